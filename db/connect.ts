@@ -1,0 +1,22 @@
+import { Kysely, PostgresDialect } from "kysely";
+import pg from "pg";
+import type { DB } from "#db/schema.ts";
+
+// The driver gives bigint and numeric as text, so that sums would join as strings. Counts here stay far below 2^53 and
+// no numeric column exists, so both become numbers; a date stays the text that was stored, without a time zone's shift.
+pg.types.setTypeParser(pg.types.builtins.INT8, Number);
+pg.types.setTypeParser(pg.types.builtins.NUMERIC, Number);
+pg.types.setTypeParser(pg.types.builtins.DATE, (text: string) => text);
+
+/** A pool of connections for one role, as a typed Kysely client. The caller ends it with `destroy()`. */
+export function connect(connectionString: string, options: { max?: number; name?: string } = {}): Kysely<DB> {
+	const pool = new pg.Pool({
+		connectionString,
+		max: options.max ?? 10,
+		application_name: options.name ?? "tallygrove",
+		connectionTimeoutMillis: 5_000,
+	});
+	// A server that went away is reported by the query that meets it; an idle connection's error must not end the process.
+	pool.on("error", () => {});
+	return new Kysely<DB>({ dialect: new PostgresDialect({ pool }) });
+}

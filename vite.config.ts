@@ -1,0 +1,43 @@
+import { reactRouter } from "@react-router/dev/vite";
+import tailwindcss from "@tailwindcss/vite";
+import { defineConfig } from "vite";
+
+export default defineConfig({
+	plugins: [tailwindcss(), ...(process.env.VITEST ? [] : [reactRouter()])],
+	test: {
+		projects: [
+			{
+				extends: true,
+				test: {
+					name: "unit",
+					include: [
+						"app/**/*.test.{ts,tsx}",
+						"db/**/*.test.ts",
+						"fakes/**/*.test.ts",
+						"tests/reference/**/*.test.ts",
+						"tests/rules/**/*.test.ts",
+					],
+				},
+			},
+			{
+				extends: true,
+				test: {
+					name: "database",
+					include: ["tests/database/**/*.test.ts", "tests/walls/**/*.test.ts"],
+					testTimeout: 30_000,
+					hookTimeout: 60_000,
+				},
+			},
+			{
+				extends: true,
+				test: {
+					name: "browser",
+					include: ["tests/browser/**/*.test.ts"],
+					testTimeout: 180_000,
+					hookTimeout: 120_000,
+					fileParallelism: false,
+				},
+			},
+		],
+	},
+});
