@@ -1,0 +1,64 @@
+// This checkout's database, ready to use: cluster, roles, migrations.
+import { join } from "node:path";
+import { databaseUrl, ensureDatabase, ensureRoles } from "./roles.mjs";
+import { local, localSecrets, readState, remember, root, writePrivate } from "./local.mjs";
+import { startCluster, stopCluster } from "./cluster.mjs";
+import { atEnd } from "./end.mjs";
+import { run } from "./run.mjs";
+import { step } from "./steps.mjs";
+
+const tsx = join(root, "node_modules/.bin/tsx");
+
+/** @returns the three addresses of the private database. Unless it was left running on purpose, it stops at the end. */
+export async function preparePrivateDatabase({ stays = false } = {}) {
+	let cluster;
+	await step("Database cluster", async () => {
+		const left = stays || readState().databaseStays === true;
+		cluster = await startCluster({ name: "demo", guarded: !stays });
+		if (left && cluster.wasRunning) cluster.guard?.dismiss();
+		else if (!stays) atEnd(() => stopCluster(cluster));
+		remember({ databaseStays: stays || (left && cluster.wasRunning) });
+		return `PostgreSQL ${cluster.version} on 127.0.0.1:${cluster.port}${cluster.wasRunning ? ", was running" : ""}`;
+	});
+	await step("Roles and database", async () => {
+		await ensureRoles(cluster);
+		await ensureDatabase(cluster);
+	});
+	return {
+		DATABASE_URL: databaseUrl(cluster, "app"),
+		DATABASE_READER_URL: databaseUrl(cluster, "reader"),
+		DATABASE_OWNER_URL: databaseUrl(cluster, "owner"),
+	};
+}
+
+export const migrate = (environment) =>
+	step("Migrations", async () => {
+		const { output } = await run(tsx, ["db/migrate.ts"], { env: environment });
+		return output.trim().split("\n").at(-1) || "done";
+	});
+
+export const seed = (environment) =>
+	step("Demo data", async () => {
+		const { output } = await run(tsx, ["db/seed/seed.ts"], { env: environment });
+		return output.trim().split("\n").at(-1) || "done";
+	});
+
+/** Addresses and secret for working on the code by hand: `set -a; . .local/env; set +a`. */
+export function writeEnvironmentFile(addresses) {
+	const all = { ...addresses, SESSION_SECRET: localSecrets().session };
+	const path = join(local, "env");
+	writePrivate(
+		path,
+		Object.entries(all)
+			.map(([name, value]) => `export ${name}=${value}\n`)
+			.join(""),
+	);
+	return path;
+}
+
+/** Stops the database that --database-only left running. */
+export async function stopDatabase() {
+	const cluster = await startCluster({ name: "demo" });
+	await stopCluster(cluster);
+	remember({ databaseStays: false });
+}
