@@ -1,0 +1,73 @@
+import type { MiddlewareFunction, RouterContextProvider } from "react-router";
+import { refusal } from "#app/lib/refusal.ts";
+import { scopedTransaction, type Scope, type Trx } from "./scope.server.ts";
+import type { Associate, Coordinator, Grower, Person, Researcher } from "./viewer.ts";
+import { visitorContext } from "./visitor.server.ts";
+
+type Context = Readonly<RouterContextProvider>;
+/** A viewer with transactions that see what the viewer may see, and nothing else. */
+export type Access<V> = { viewer: V; transaction<T>(work: (trx: Trx) => Promise<T>): Promise<T> };
+
+function access<V>(viewer: V, scope: Scope): Access<V> {
+	return { viewer, transaction: (work) => scopedTransaction(scope, work) };
+}
+
+/** @throws refusal 401 when nobody is signed in. */
+export function requirePerson(context: Context): Access<Person> {
+	const { person } = context.get(visitorContext);
+	if (!person) throw refusal("sign_in_needed");
+	return access(person, { kind: "none" });
+}
+
+/** An associate, limited to granted states. @throws refusal 401 or 403. */
+export function requireAssociate(context: Context): Access<Associate> {
+	const { viewer: person } = requirePerson(context);
+	const { stateFips } = context.get(visitorContext).grants;
+	if (stateFips.length === 0) throw refusal("role_needed", { role: "associate" });
+	return access({ ...person, role: "associate", stateFips }, { kind: "desk", stateFips });
+}
+
+/**
+ * A coordinator: grants, approvals, log. The scope is a desk's with no state, so raw answers stay out of reach; drafts of
+ * releases, which cover the network, are in it.
+ */
+export function requireCoordinator(context: Context): Access<Coordinator> {
+	const { viewer: person } = requirePerson(context);
+	if (!context.get(visitorContext).grants.coordinator) throw refusal("role_needed", { role: "coordinator" });
+	return access({ ...person, role: "coordinator" }, { kind: "desk", stateFips: [] });
+}
+
+/** A researcher whose request was approved. Without a transaction: the data room reads as the reader only. */
+export function requireResearcher(context: Context): Researcher {
+	const { viewer: person } = requirePerson(context);
+	if (!context.get(visitorContext).grants.researcher) throw refusal("role_needed", { role: "researcher" });
+	return { ...person, role: "researcher" };
+}
+
+/** Whoever answers a survey: by personal link (one operation, one survey) or signed in. @throws refusal 401 or 403. */
+export function requireGrower(context: Context): Access<Grower> {
+	const { link } = context.get(visitorContext);
+	if (!link) return requireOrchard(context);
+	const operationIds = [link.operationId];
+	return access({ role: "grower", operationIds, link, person: null }, { kind: "grower", operationIds });
+}
+
+/** A signed-in grower's own pages: contact data and past seasons, which a personal link never opens. */
+export function requireOrchard(context: Context): Access<Grower> {
+	const { viewer: person } = requirePerson(context);
+	const { operationIds } = context.get(visitorContext).grants;
+	if (operationIds.length === 0) throw refusal("role_needed", { role: "grower" });
+	return access({ role: "grower", operationIds, link: null, person }, { kind: "grower", operationIds });
+}
+
+/** Guards of the areas of the site, one for each; their layouts have loaders, so that data requests pass them too. */
+const guard =
+	(require: (context: Context) => unknown): MiddlewareFunction<Response> =>
+	({ context }, next) => {
+		require(context);
+		return next();
+	};
+export const deskGuard = guard(requireAssociate);
+export const networkGuard = guard(requireCoordinator);
+export const orchardGuard = guard(requireOrchard);
+export const dataroomGuard = guard(requirePerson);

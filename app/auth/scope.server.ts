@@ -1,0 +1,44 @@
+import { sql, type Kysely, type Transaction } from "kysely";
+import { connect } from "#db/connect.ts";
+import type { DB } from "#db/schema.ts";
+import { env } from "#app/lib/env.server.ts";
+
+/**
+ * Who a transaction works for. Row-level security on `directory` and `collect` reads it, as a second wall under the checks
+ * in code: `desk` sees granted states, `grower` its own operations, `network` (jobs, the release's figures) all rows,
+ * `none` (sessions, sign-in, access requests) no row of either schema.
+ */
+export type Scope =
+	| { kind: "desk"; stateFips: string[] }
+	| { kind: "grower"; operationIds: string[] }
+	| { kind: "network" }
+	| { kind: "none" };
+
+export type Trx = Transaction<DB>;
+
+let app: Kysely<DB> | undefined;
+
+function appDatabase(): Kysely<DB> {
+	app ??= connect(env().DATABASE_URL, { name: "tallygrove-app" });
+	return app;
+}
+
+/** Runs `work` in one transaction under `scope`; the settings end with the transaction. */
+export function scopedTransaction<T>(scope: Scope, work: (trx: Trx) => Promise<T>): Promise<T> {
+	return appDatabase()
+		.transaction()
+		.execute(async (trx) => {
+			await setScope(trx, scope);
+			return work(trx);
+		});
+}
+
+/** Sets whom a transaction works for; for callers that own their transaction (the seed, jobs, tests). */
+export async function setScope(trx: Trx, scope: Scope): Promise<void> {
+	const states = scope.kind === "desk" ? scope.stateFips.join(",") : "";
+	const operations = scope.kind === "grower" ? scope.operationIds.join(",") : "";
+	await sql`select set_config('tallygrove.scope', ${scope.kind === "none" ? "" : scope.kind}, true),
+		set_config('tallygrove.states', ${states}, true), set_config('tallygrove.operations', ${operations}, true)`.execute(
+		trx,
+	);
+}

@@ -1,0 +1,150 @@
+import { z } from "zod";
+
+/** The words of one text in every language of the product. English gives the type; a form without Spanish does not parse. */
+export const Words = z.object({ en: z.string().min(1), es: z.string().min(1) });
+export type Words = z.infer<typeof Words>;
+
+const Key = z.string().regex(/^[a-z][a-z0-9_]*$/);
+
+/**
+ * When a question is asked, from earlier answers. `any_planting` holds when its inner condition holds for at least one
+ * row of the planting table; inside it, `question` names the table's columns.
+ */
+export type Condition =
+	| {
+			compare: "<" | "<=" | "=" | "!=" | ">=" | ">";
+			question: string;
+			to: { value: number | string } | { question: string };
+	  }
+	| { all: Condition[] }
+	| { any: Condition[] }
+	| { not: Condition }
+	| { any_planting: Condition };
+export const Condition: z.ZodType<Condition> = z.lazy(() =>
+	z.union([
+		z.object({
+			compare: z.enum(["<", "<=", "=", "!=", ">=", ">"]),
+			question: Key,
+			to: z.union([z.object({ value: z.union([z.number(), z.string()]) }), z.object({ question: Key })]),
+		}),
+		z.object({ all: z.array(Condition).min(1) }),
+		z.object({ any: z.array(Condition).min(1) }),
+		z.object({ not: Condition }),
+		z.object({ any_planting: Condition }),
+	]),
+);
+
+const questionBase = {
+	key: Key,
+	text: Words,
+	help: Words.optional(),
+	required: z.boolean(),
+	/** Only asked when this holds; what a condition hides is kept while editing and left out at submission. */
+	condition: Condition.optional(),
+	/** A cell in which everybody gives one answer to a sensitive question is withheld. */
+	sensitive: z.boolean().default(false),
+};
+const limits = z
+	.object({ hardMin: z.number(), hardMax: z.number(), softMin: z.number(), softMax: z.number() })
+	.partial()
+	.optional();
+
+export const Question = z.discriminatedUnion("type", [
+	z.object({
+		...questionBase,
+		type: z.literal("number"),
+		unitFamily: z.enum(["mass", "area", "temperature", "trees", "count"]),
+		limits,
+		/** Filled in from the directory, so that what is known is confirmed and not asked again. */
+		prefill: z.enum(["bearing_trees"]).optional(),
+	}),
+	z.object({ ...questionBase, type: z.literal("percent"), limits }),
+	z.object({ ...questionBase, type: z.literal("date") }),
+	z.object({
+		...questionBase,
+		type: z.literal("choice"),
+		options: z.array(z.object({ key: Key, text: Words })).min(2),
+	}),
+	z.object({
+		...questionBase,
+		type: z.literal("several"),
+		options: z.array(z.object({ key: Key, text: Words })).min(2),
+	}),
+	z.object({
+		...questionBase,
+		type: z.literal("rating"),
+		options: z.array(z.object({ key: Key, text: Words })).min(2),
+	}),
+	z.object({ ...questionBase, type: z.literal("short_text"), maxLength: z.number().int().default(200) }),
+	z.object({ ...questionBase, type: z.literal("long_text"), maxLength: z.number().int().default(5000) }),
+	z.object({ ...questionBase, type: z.literal("photo") }),
+]);
+export type Question = z.infer<typeof Question>;
+
+/** One screen of the survey: either questions asked once, or the planting table, which takes one screen a planting. */
+export const Screen = z.object({
+	key: Key,
+	title: Words,
+	help: Words.optional(),
+	/** true: the questions below are the columns of the planting table, asked once for each planting. */
+	perPlanting: z.boolean(),
+	questions: z.array(Question).min(1),
+	/** Percent questions of this screen that must add up to a hundred. */
+	sumToHundred: z.array(Key).optional(),
+	condition: Condition.optional(),
+});
+export type Screen = z.infer<typeof Screen>;
+
+/** Σ times · question (· share/100): a linear form of an operation's answers, plantings of the crop summed first. */
+const LinearForm = z.object({
+	terms: z.array(z.object({ question: Key, times: z.number(), share: Key.optional() })).min(1),
+});
+/** 1 for an operation where the condition holds for its sums, else 0. */
+const Indicator = z.object({ indicator: Condition });
+const One = z.object({ one: z.literal(true) });
+export const Quantity = z.union([LinearForm, Indicator, One]);
+export type Quantity = z.infer<typeof Quantity>;
+
+/** What a survey estimates, declared as data: a new measure needs no code. */
+export const Measure = z.object({
+	key: z.string().regex(/^[a-z][a-z0-9_]*(\.[a-z0-9_]+)?$/),
+	kind: z.enum(["ratio", "mean", "total", "proportion"]),
+	label: Words,
+	description: Words,
+	unit: z.enum(["percent", "lb_per_tree", "lb", "trees", "operations", "percent_of_normal"]),
+	decimals: z.number().int().min(0).max(6),
+	/** Which direction is bad news, if any; maps and tables say it in words, never by colour alone. */
+	worse: z.enum(["more", "less"]).nullable(),
+	hue: z.enum(["loss", "bloom", "pests", "cold", "yield"]),
+	numerator: Quantity,
+	/** Null for totals; `{one: true}` for means and proportions. */
+	denominator: Quantity.nullable(),
+	/** Shown value = estimate × scale: 100 for a share told in percent. */
+	scale: z.number(),
+	/** Whether sums over all crops mean something. */
+	acrossCrops: z.boolean(),
+	/** A base quantity of the protection table; estimated for protection, not published as a measure. */
+	base: z.boolean().default(false),
+});
+export type Measure = z.infer<typeof Measure>;
+
+export const FormDefinition = z.object({
+	key: Key,
+	title: Words,
+	minutes: z.number().int().min(1),
+	screens: z.array(Screen).min(1),
+	measures: z.array(Measure).min(1),
+});
+export type FormDefinition = z.infer<typeof FormDefinition>;
+
+/**
+ * One answer as stored. `value` is canonical (pounds, trees, percent, ISO date, option key, text); `given` keeps what was
+ * typed and its unit. Don't know and refused have no value; a question not asked has no answer at all; zero is a value.
+ */
+export type Answer = {
+	questionKey: string;
+	plantingId: string | null;
+	kind: "given" | "dont_know" | "refused";
+	value: number | string | string[] | null;
+	given: { text: string; unit?: string } | null;
+};

@@ -1,0 +1,257 @@
+import type { FormDefinition } from "#app/collect/form.ts";
+
+const causes = [
+	["freeze", "Freeze or frost", "Helada o congelación"],
+	["poor_pollination", "Poor pollination", "Mala polinización"],
+	["hail_wind", "Hail or wind", "Granizo o viento"],
+	["drought_heat", "Drought or heat", "Sequía o calor"],
+	["too_wet", "Too much rain", "Demasiada lluvia"],
+	["disease", "Disease", "Enfermedades"],
+	["pests", "Insects, mites, birds or deer", "Insectos, ácaros, aves o venados"],
+	["other", "Something else", "Otra causa"],
+] as const;
+
+/** After harvest: what a normal year brings, what was picked, and what took the rest. */
+export const afterHarvest: FormDefinition = {
+	key: "after_harvest",
+	title: { en: "After harvest", es: "Después de la cosecha" },
+	minutes: 5,
+	screens: [
+		{
+			key: "plantings",
+			title: { en: "Your planting", es: "Su plantación" },
+			perPlanting: true,
+			questions: [
+				{
+					key: "bearing_trees",
+					type: "number",
+					unitFamily: "trees",
+					prefill: "bearing_trees",
+					text: {
+						en: "How many were old enough to bear this season?",
+						es: "¿Cuántas plantas ya estaban en edad de producir esta temporada?",
+					},
+					help: {
+						en: "Trees or bushes in bearing, whether or not they had fruit.",
+						es: "Árboles o arbustos en producción, hayan dado fruta o no.",
+					},
+					required: true,
+					limits: { hardMin: 0, hardMax: 2_000_000, softMax: 100_000 },
+					sensitive: false,
+				},
+				{
+					key: "normal_crop",
+					type: "number",
+					unitFamily: "mass",
+					text: {
+						en: "In a normal year, how much would you pick from this planting?",
+						es: "En un año normal, ¿cuánto cosecharía de esta plantación?",
+					},
+					help: { en: "Your best estimate is fine.", es: "Basta con su mejor cálculo." },
+					required: true,
+					limits: { hardMin: 0, hardMax: 200_000_000 },
+					sensitive: false,
+				},
+				{
+					key: "harvested",
+					type: "number",
+					unitFamily: "mass",
+					text: { en: "How much did you pick from it this season?", es: "¿Cuánto cosechó de ella esta temporada?" },
+					help: { en: "Enter 0 if everything was lost.", es: "Escriba 0 si se perdió todo." },
+					required: true,
+					limits: { hardMin: 0, hardMax: 200_000_000 },
+					sensitive: false,
+				},
+			],
+		},
+		{
+			key: "causes",
+			title: { en: "What took the fruit", es: "Qué causó la pérdida" },
+			help: {
+				en: "Of all that was lost, what share went to each? The shares add up to 100.",
+				es: "De todo lo que se perdió, ¿qué parte se debió a cada causa? Las partes suman 100.",
+			},
+			perPlanting: false,
+			condition: { any_planting: { compare: "<", question: "harvested", to: { question: "normal_crop" } } },
+			sumToHundred: causes.map(([key]) => `cause_${key}`),
+			questions: causes.map(([key, en, es]) => ({
+				key: `cause_${key}`,
+				type: "percent" as const,
+				text: { en, es },
+				required: false,
+				limits: { hardMin: 0, hardMax: 100 },
+				sensitive: false,
+			})),
+		},
+		{
+			key: "harvest_days",
+			title: { en: "Harvest days", es: "Días de cosecha" },
+			perPlanting: false,
+			questions: [
+				{
+					key: "first_harvest",
+					type: "date",
+					text: { en: "First day of harvest", es: "Primer día de cosecha" },
+					required: false,
+					sensitive: false,
+				},
+				{
+					key: "last_harvest",
+					type: "date",
+					text: { en: "Last day of harvest", es: "Último día de cosecha" },
+					required: false,
+					sensitive: false,
+				},
+			],
+		},
+		{
+			key: "next_year",
+			title: { en: "Looking to next year", es: "Con vistas al próximo año" },
+			perPlanting: false,
+			questions: [
+				{
+					key: "bud_set",
+					type: "rating",
+					text: { en: "How do the buds for next year look?", es: "¿Cómo se ven las yemas para el próximo año?" },
+					required: false,
+					sensitive: false,
+					options: [
+						{ key: "none", text: { en: "Hardly any", es: "Casi ninguna" } },
+						{ key: "light", text: { en: "Light", es: "Pocas" } },
+						{ key: "normal", text: { en: "Normal", es: "Normales" } },
+						{ key: "heavy", text: { en: "Heavy", es: "Muchas" } },
+					],
+				},
+				{
+					key: "comment",
+					type: "long_text",
+					text: {
+						en: "Anything your extension associate should know?",
+						es: "¿Algo que deba saber su asesor de extensión?",
+					},
+					help: {
+						en: "Read by your state's associates only, never published.",
+						es: "Solo lo leen los asesores de su estado; nunca se publica.",
+					},
+					required: false,
+					maxLength: 5000,
+					sensitive: false,
+				},
+			],
+		},
+	],
+	measures: [
+		{
+			key: "crop_loss",
+			kind: "ratio",
+			label: { en: "Crop loss", es: "Pérdida de cosecha" },
+			description: {
+				en: "Pounds not picked as a share of a normal crop, over all reporting operations together.",
+				es: "Libras que no se cosecharon, como parte de una cosecha normal, de todas las fincas juntas.",
+			},
+			unit: "percent",
+			decimals: 0,
+			worse: "more",
+			hue: "loss",
+			numerator: {
+				terms: [
+					{ question: "normal_crop", times: 1 },
+					{ question: "harvested", times: -1 },
+				],
+			},
+			denominator: { terms: [{ question: "normal_crop", times: 1 }] },
+			scale: 100,
+			acrossCrops: true,
+			base: false,
+		},
+		{
+			key: "freeze_loss",
+			kind: "ratio",
+			label: { en: "Loss to freeze or frost", es: "Pérdida por helada" },
+			description: {
+				en: "Pounds lost to freeze or frost as a share of a normal crop.",
+				es: "Libras perdidas por helada o congelación, como parte de una cosecha normal.",
+			},
+			unit: "percent",
+			decimals: 0,
+			worse: "more",
+			hue: "loss",
+			numerator: {
+				terms: [
+					{ question: "normal_crop", times: 1, share: "cause_freeze" },
+					{ question: "harvested", times: -1, share: "cause_freeze" },
+				],
+			},
+			denominator: { terms: [{ question: "normal_crop", times: 1 }] },
+			scale: 100,
+			acrossCrops: true,
+			base: false,
+		},
+		{
+			key: "total_loss",
+			kind: "proportion",
+			label: { en: "Operations that lost everything", es: "Fincas que lo perdieron todo" },
+			description: {
+				en: "Share of operations with the crop that picked nothing although a normal year brings some.",
+				es: "Parte de las fincas con el cultivo que no cosecharon nada aunque en un año normal sí cosechan.",
+			},
+			unit: "percent",
+			decimals: 0,
+			worse: "more",
+			hue: "loss",
+			numerator: {
+				indicator: {
+					all: [
+						{ compare: ">", question: "normal_crop", to: { value: 0 } },
+						{ compare: "=", question: "harvested", to: { value: 0 } },
+					],
+				},
+			},
+			denominator: { one: true },
+			scale: 100,
+			acrossCrops: true,
+			base: false,
+		},
+		{
+			key: "yield_per_tree",
+			kind: "ratio",
+			label: { en: "Yield per bearing tree or bush", es: "Rendimiento por árbol o arbusto en producción" },
+			description: {
+				en: "Pounds picked per tree or bush in bearing.",
+				es: "Libras cosechadas por árbol o arbusto en producción.",
+			},
+			unit: "lb_per_tree",
+			decimals: 1,
+			worse: "less",
+			hue: "yield",
+			numerator: { terms: [{ question: "harvested", times: 1 }] },
+			denominator: { terms: [{ question: "bearing_trees", times: 1 }] },
+			scale: 1,
+			acrossCrops: false,
+			base: false,
+		},
+		...(["bearing_trees", "normal_crop", "harvested"] as const).map((question) => ({
+			key: question === "bearing_trees" ? "base.bearing_trees" : `base.${question}_lb`,
+			kind: "total" as const,
+			label: {
+				bearing_trees: { en: "Bearing trees or bushes", es: "Árboles o arbustos en producción" },
+				normal_crop: { en: "Normal crop", es: "Cosecha normal" },
+				harvested: { en: "Harvested", es: "Cosechado" },
+			}[question],
+			description: {
+				bearing_trees: { en: "Trees or bushes in bearing.", es: "Árboles o arbustos en producción." },
+				normal_crop: { en: "Pounds in a normal year.", es: "Libras en un año normal." },
+				harvested: { en: "Pounds picked.", es: "Libras cosechadas." },
+			}[question],
+			unit: question === "bearing_trees" ? ("trees" as const) : ("lb" as const),
+			decimals: 0,
+			worse: null,
+			hue: "yield" as const,
+			numerator: { terms: [{ question, times: 1 }] },
+			denominator: null,
+			scale: 1,
+			acrossCrops: true,
+			base: true,
+		})),
+	],
+};

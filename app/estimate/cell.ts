@@ -1,0 +1,112 @@
+import type { Moments } from "#app/lib/moments.ts";
+import type { Tally } from "#app/tally/tally.ts";
+import { domainDegreesOfFreedom, domainStrata, domainTotals, type DomainStratum } from "#app/estimate/domain.ts";
+import { meanEstimate, ratioEstimate, totalEstimate, type Figure } from "#app/estimate/estimators.ts";
+import { exactInterval, logitInterval, normalInterval, type Interval } from "#app/estimate/interval.ts";
+import { steadiness, type Steadiness, type SteadinessCutOffs } from "#app/estimate/steadiness.ts";
+import type { Join, StrataFrame } from "#app/estimate/strata.ts";
+
+/**
+ * What is estimated from a measure's y and x: the total of y; the mean of y an operation; the ratio of the totals of y
+ * and x; or a proportion, a ratio that lies between 0 and 1 because y is a part of x (or y is 0 or 1 and x is 1).
+ */
+export type EstimateKind = "total" | "mean" | "ratio" | "proportion";
+
+/** `range` holds the values that are possible at all; an interval is cut off there. Left out: none is impossible. */
+export type EstimatedMeasure = { kind: EstimateKind; range?: { lowest?: number; highest?: number } };
+
+/** Why a value or a standard error is missing. */
+export type Missing = "no_respondents" | "one_respondent" | "no_base" | "no_strata";
+
+/** A figure for one measure, crop and area. All of it in the units of the value, but `cv`, a fraction. */
+export type Estimate = {
+	value: number | null;
+	standardError: number | null;
+	cv: number | null;
+	/** Ends of the 95 percent interval. */
+	lower: number | null;
+	upper: number | null;
+	/** Operations of the area that answered. Owners are counted in protect. */
+	respondents: number;
+	steadiness: Steadiness;
+	/** Strata joined among those that hold the area's respondents. */
+	joins: Join[];
+	missing: Missing | null;
+};
+
+/**
+ * The estimate of one measure and crop in one area, from the area's tallies alone.
+ * @param frame the joined strata of the whole network for this measure and crop (`joinStrata`).
+ * @param tallies the area's tally rows of this measure and crop.
+ * @param cutOffs the network's setting for steadiness.
+ * @returns value in units of y (total, mean) or y per unit of x (ratio, proportion: a fraction). Null means that no such
+ *   value exists, and `missing` says why: nobody answered, X is 0, or one operation answered, whose answer has no
+ *   spread to judge by. Never NaN.
+ * @throws {RangeError} when tallies and frame do not fit each other, or a proportion leaves 0 to 1.
+ */
+export function estimateCell(
+	measure: EstimatedMeasure,
+	frame: StrataFrame,
+	tallies: Iterable<Moments & Pick<Tally, "stratumKey">>,
+	cutOffs?: SteadinessCutOffs,
+): Estimate {
+	const rows = [...tallies].filter((tally) => tally.n > 0);
+	const strata = domainStrata(frame, rows);
+	const { respondents } = domainTotals(strata);
+	const keys = new Set(rows.map((tally) => tally.stratumKey));
+	const joins = frame.joins.filter((join) => join.stratumKeys.some((key) => keys.has(key)));
+	const empty = { value: null, standardError: null, cv: null, lower: null, upper: null, steadiness: "rough" } as const;
+	if (respondents === 0) return { ...empty, respondents, joins, missing: "no_respondents" };
+
+	if (respondents === 1) {
+		const value = pointOf(measure.kind, strata);
+		return { ...empty, value, respondents, joins, missing: value === null ? "no_base" : "one_respondent" };
+	}
+	const figure = figureOf(measure.kind, strata);
+	if (!figure) return { ...empty, respondents, joins, missing: "no_base" };
+
+	const { value, standardError } = figure;
+	const cv = value === 0 ? null : standardError / Math.abs(value);
+	const everybody = strata.every((stratum) => stratum.domain.n === 0 || stratum.samplingFraction === 1);
+	return {
+		value,
+		standardError,
+		cv,
+		...clip(intervalOf(measure.kind, figure, strata), measure.range),
+		respondents,
+		steadiness: steadiness({ cv, standardError, everybody }, cutOffs),
+		joins,
+		missing: null,
+	};
+}
+
+function figureOf(kind: EstimateKind, strata: readonly DomainStratum[]): Figure | null {
+	if (kind === "total") return totalEstimate(strata);
+	if (kind === "mean") return meanEstimate(strata);
+	const ratio = ratioEstimate(strata);
+	// Weighted sums of parts that are the whole can come out a rounding above it.
+	if (kind === "proportion" && ratio && Math.abs(ratio.value - 1) < 1e-12) return { ...ratio, value: 1 };
+	return ratio;
+}
+
+/** The estimate without its variance, which the stratum of a lone respondent need not have. */
+function pointOf(kind: EstimateKind, strata: readonly DomainStratum[]): number | null {
+	const { count, totalY, totalX } = domainTotals(strata);
+	if (kind === "total") return totalY;
+	const base = kind === "mean" ? count : totalX;
+	return base === 0 ? null : totalY / base;
+}
+
+function intervalOf(kind: EstimateKind, figure: Figure, strata: readonly DomainStratum[]): Interval | null {
+	if (kind !== "proportion") return normalInterval(figure);
+	const df = domainDegreesOfFreedom(strata);
+	return logitInterval(figure, df) ?? exactInterval(figure, domainTotals(strata).respondents, df);
+}
+
+function clip(
+	interval: Interval | null,
+	{ lowest = -Infinity, highest = Infinity }: { lowest?: number; highest?: number } = {},
+): { lower: number | null; upper: number | null } {
+	if (!interval) return { lower: null, upper: null };
+	return { lower: Math.max(lowest, interval.lower), upper: Math.min(highest, interval.upper) };
+}

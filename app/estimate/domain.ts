@@ -1,0 +1,74 @@
+import { addMoments, emptyMoments, type Moments } from "#app/lib/moments.ts";
+import type { Tally } from "#app/tally/tally.ts";
+import type { StrataFrame } from "#app/estimate/strata.ts";
+
+/**
+ * One stratum of the design seen from a domain (an area, or any part of the respondents).
+ * `respondents` counts the whole stratum, `domain` only those inside the domain: operations outside enter every
+ * formula as zeros, and leaving them out would make small domains look too certain.
+ */
+export type DomainStratum = {
+	/** Operations that one respondent stands for: N_h / n_h, or a weight given from outside. */
+	weight: number;
+	/** n_h / N_h, between 0 and 1; 0 leaves out the finite population correction, 1 is a full count. */
+	samplingFraction: number;
+	respondents: number;
+	domain: Moments;
+};
+
+/** Weighted count and totals of a domain, with its plain count of respondents. */
+export type DomainTotals = { respondents: number; count: number; totalY: number; totalX: number };
+
+/**
+ * The strata of a measure and crop, seen from the area whose tallies are given.
+ * @param frame the joined strata of the whole network.
+ * @param tallies the area's tally rows of that measure and crop; none is an area without respondents.
+ * @returns every stratum that has respondents, also those with nobody in the area.
+ * @throws {RangeError} when a tally's stratum is not in the frame, or the area has more respondents than the stratum.
+ */
+export function domainStrata(
+	frame: StrataFrame,
+	tallies: Iterable<Moments & Pick<Tally, "stratumKey">>,
+): DomainStratum[] {
+	const place = new Map(frame.strata.flatMap((stratum, i) => stratum.stratumKeys.map((key) => [key, i] as const)));
+	const inside: Moments[] = frame.strata.map(() => emptyMoments);
+	for (const tally of tallies) {
+		if (tally.n === 0) continue;
+		const i = place.get(tally.stratumKey);
+		if (i === undefined) throw new RangeError(`stratum ${tally.stratumKey} has a tally but is not in the frame`);
+		inside[i] = addMoments(inside[i]!, tally);
+	}
+	const strata: DomainStratum[] = [];
+	for (const [i, { stratumKeys, frameSize, respondents }] of frame.strata.entries()) {
+		const domain = inside[i]!;
+		if (domain.n > respondents) {
+			throw new RangeError(`stratum ${stratumKeys.join("+")} has ${respondents} respondents, its area ${domain.n}`);
+		}
+		if (respondents === 0) continue;
+		strata.push({ weight: frameSize / respondents, samplingFraction: respondents / frameSize, respondents, domain });
+	}
+	return strata;
+}
+
+/** Weighted totals of a domain. `count` estimates its operations on the frame; all are 0 where nobody answered. */
+export function domainTotals(strata: readonly DomainStratum[]): DomainTotals {
+	const totals = { respondents: 0, count: 0, totalY: 0, totalX: 0 };
+	for (const { weight, domain } of strata) {
+		totals.respondents += domain.n;
+		totals.count += weight * domain.n;
+		totals.totalY += weight * domain.sumY;
+		totals.totalX += weight * domain.sumX;
+	}
+	return totals;
+}
+
+/** Degrees of freedom of the domain by itself: its respondents less the strata that hold them. Can be 0. */
+export function domainDegreesOfFreedom(strata: readonly DomainStratum[]): number {
+	const present = strata.filter((stratum) => stratum.domain.n > 0);
+	return present.reduce((sum, stratum) => sum + stratum.domain.n, 0) - present.length;
+}
+
+/** Degrees of freedom of the whole design: all respondents less the strata. */
+export function designDegreesOfFreedom(strata: readonly DomainStratum[]): number {
+	return strata.reduce((sum, stratum) => sum + stratum.respondents, 0) - strata.length;
+}

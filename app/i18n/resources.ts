@@ -1,0 +1,36 @@
+import enCommon from "#locales/en/common.json" with { type: "json" };
+import enDataroom from "#locales/en/dataroom.json" with { type: "json" };
+import enDesk from "#locales/en/desk.json" with { type: "json" };
+import enGrower from "#locales/en/grower.json" with { type: "json" };
+import enMail from "#locales/en/mail.json" with { type: "json" };
+import enNetwork from "#locales/en/network.json" with { type: "json" };
+import enPublic from "#locales/en/public.json" with { type: "json" };
+import esCommon from "#locales/es/common.json" with { type: "json" };
+import esDataroom from "#locales/es/dataroom.json" with { type: "json" };
+import esDesk from "#locales/es/desk.json" with { type: "json" };
+import esGrower from "#locales/es/grower.json" with { type: "json" };
+import esMail from "#locales/es/mail.json" with { type: "json" };
+import esNetwork from "#locales/es/network.json" with { type: "json" };
+import esPublic from "#locales/es/public.json" with { type: "json" };
+
+/** All words of the product, for the server. A browser loads one language only (`load-language.client.ts`). */
+export const resources = {
+	en: {
+		common: enCommon,
+		dataroom: enDataroom,
+		desk: enDesk,
+		grower: enGrower,
+		mail: enMail,
+		network: enNetwork,
+		public: enPublic,
+	},
+	es: {
+		common: esCommon,
+		dataroom: esDataroom,
+		desk: esDesk,
+		grower: esGrower,
+		mail: esMail,
+		network: esNetwork,
+		public: esPublic,
+	},
+};

@@ -1,0 +1,30 @@
+import { parseWithZod } from "@conform-to/zod/v4";
+import type { z } from "zod";
+
+/** One thing to mend: the field's name and a code whose words are `common:problem.<code>`. */
+export type Problem = { field: string; code: string; detail?: Record<string, string | number> };
+export type FormValues = Record<string, unknown>;
+export type ParsedForm<T> = { ok: true; value: T } | { ok: false; values: FormValues; problems: Problem[] };
+
+/**
+ * Reads a sent form against its schema. Names like `plantings[0].trees` become nested values. On failure what was typed
+ * comes back whole, with one problem a field: a schema's own message when it is a code (`empty`, `too_long`), else one
+ * made from the kind of failure.
+ */
+export function parseForm<S extends z.ZodType>(schema: S, form: FormData): ParsedForm<z.infer<S>> {
+	const submission = parseWithZod(form, { schema: schema as never });
+	if (submission.status === "success") return { ok: true, value: submission.value as z.infer<S> };
+	const problems = Object.entries(submission.error ?? {}).flatMap(([field, messages]) => {
+		const message = messages?.[0];
+		return message ? [{ field, code: toCode(message) }] : [];
+	});
+	return { ok: false, values: submission.payload, problems };
+}
+
+function toCode(message: string): string {
+	if (/^[a-z_]+$/.test(message)) return message;
+	if (/received undefined|expected .* received undefined/i.test(message)) return "empty";
+	if (/too big|<=|at most/i.test(message)) return "too_long";
+	if (/too small|>=|at least/i.test(message)) return "empty";
+	return "wrong";
+}

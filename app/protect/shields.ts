@@ -1,0 +1,176 @@
+import { Augmenter } from "./augment.ts";
+import type { OwnCell } from "./levels.ts";
+import type { Solver } from "./solver.ts";
+import { childrenOf, type ProtectionTable } from "./table.ts";
+
+export interface ShieldOptions {
+	/** Whether single owners of cells are attackers who know those cells. */
+	ownersAttack: boolean;
+	/** Whether the total of everything may be withheld when nothing else helps. */
+	grandTotal: "last_resort" | "never";
+}
+
+/** The cells on which the protection of one own cell, in one quantity and direction, rests. */
+interface Footing {
+	own: OwnCell;
+	quantity: string;
+	direction: 1 | -1;
+	cells: Set<number>;
+}
+
+/** Above the level by this share, so that rounding in the audit's programs does not count as a failure. */
+const MARGIN = 1 + 1e-5;
+
+/**
+ * Chooses shields: cells that are withheld so that no own cell can be worked out. Safe, near the least loss, not
+ * proven least. Own cells are taken from the widest level down; for each, quantity by quantity, the cheapest way to
+ * move it up and down by its level is found with cells already withheld almost free, and the cells of that way are
+ * withheld. What is withheld later can only widen an interval, so one pass protects all. A second pass shows each
+ * shield again, dearest first, where every cell resting on it finds another footing among the withheld.
+ * The order is fixed by weight and position, so the same table gives the same shields.
+ * @returns positions of the shields; null when even withholding every cell that may be withheld does not help.
+ */
+export function chooseShields(
+	solver: Solver,
+	table: ProtectionTable,
+	own: readonly OwnCell[],
+	options: ShieldOptions,
+): Set<number> | null {
+	const weights = cellWeights(table);
+	const hidden = new Set(own.map(({ index }) => index));
+	const grand = table.cells.findIndex((c) => c.coordinates.every((code, d) => code === table.hierarchies[d]!.root));
+	const augmenter = new Augmenter(solver, table, weights, hidden, new Set(hidden.has(grand) ? [] : [grand]));
+	const find = footingFinder(table, augmenter, options);
+	try {
+		const footings: Footing[] = [];
+		for (const wish of wishesOf(table, own, weights)) {
+			let footing = find(wish, []);
+			if (!footing && options.grandTotal === "last_resort" && augmenter.locked.has(grand)) {
+				augmenter.unlock(grand);
+				footing = find(wish, []);
+			}
+			if (!footing) return null;
+			for (const index of footing) if (!hidden.has(index)) augmenter.hide(index);
+			footings.push({ ...wish, cells: footing });
+		}
+		const ownSet = new Set(own.map(({ index }) => index));
+		showNeedless(augmenter, footings, ownSet, weights, find);
+		return new Set([...hidden].filter((index) => !ownSet.has(index)).toSorted((a, b) => a - b));
+	} finally {
+		augmenter.dispose();
+	}
+}
+
+type Find = (wish: Omit<Footing, "cells">, fixed: readonly number[]) => Set<number> | null;
+
+/** Shows every shield that nothing rests on, or whose dependants can all stand elsewhere among the withheld. */
+function showNeedless(
+	augmenter: Augmenter,
+	footings: Footing[],
+	own: ReadonlySet<number>,
+	weights: readonly number[],
+	find: Find,
+) {
+	const resting = new Map<number, Set<Footing>>();
+	const rest = (footing: Footing, index: number) => {
+		const set = resting.get(index);
+		if (set) set.add(footing);
+		else resting.set(index, new Set([footing]));
+	};
+	for (const footing of footings) for (const index of footing.cells) rest(footing, index);
+	const shields = [...augmenter.hidden].filter((index) => !own.has(index));
+	for (const shield of shields.toSorted((a, b) => weights[b]! - weights[a]! || a - b)) {
+		const moves = new Map<Footing, Set<number>>();
+		let needed = false;
+		for (const footing of resting.get(shield) ?? []) {
+			const other = find(footing, [shield]);
+			needed = !other || [...other].some((index) => !augmenter.hidden.has(index));
+			if (needed) break;
+			moves.set(footing, other!);
+		}
+		if (needed) continue;
+		augmenter.show(shield);
+		for (const [footing, cells] of moves) {
+			for (const index of footing.cells) resting.get(index)?.delete(footing);
+			footing.cells = cells;
+			for (const index of cells) rest(footing, index);
+		}
+	}
+}
+
+/** Finds on what a wish can stand, for the public and for each single owner who knows a cell of it. */
+function footingFinder(table: ProtectionTable, augmenter: Augmenter, options: ShieldOptions): Find {
+	const holdings = options.ownersAttack ? soleHoldings(table) : new Map<string, number[]>();
+	const ownerOf = new Map([...holdings].flatMap(([owner, cells]) => cells.map((index) => [index, owner] as const)));
+	const below = insideTest(table);
+	return ({ own, quantity, direction }, fixed) => {
+		const level = own.levels[quantity]! * MARGIN;
+		const value = table.cells[own.index]!.quantities[quantity]!.total;
+		const move = direction > 0 ? level : -Math.min(level, value);
+		const first = augmenter.find({ cell: own.index, quantity, move, fixed });
+		if (!first) return null;
+		const footing = new Set(first);
+		const attackers = new Set(first.flatMap((index) => ownerOf.get(index) ?? []));
+		attackers.delete(ownerOf.get(own.index) ?? "");
+		for (const attacker of attackers) {
+			const known = holdings.get(attacker)!;
+			if (direction < 0 && known.some((index) => below(index, own.index))) continue;
+			const way = augmenter.find({ cell: own.index, quantity, move, fixed: [...fixed, ...known] });
+			if (!way) return null;
+			for (const index of way) footing.add(index);
+		}
+		return footing;
+	};
+}
+
+function wishesOf(table: ProtectionTable, own: readonly OwnCell[], weights: readonly number[]) {
+	const ordered = own.toSorted((a, b) => weights[b.index]! - weights[a.index]! || a.index - b.index);
+	return ordered.flatMap((cell) =>
+		table.quantities.flatMap(({ key }) => {
+			if (cell.levels[key] === 0) return [];
+			const directions: (1 | -1)[] = table.cells[cell.index]!.quantities[key]!.total > 0 ? [1, -1] : [1];
+			return directions.map((direction) => ({ own: cell, quantity: key, direction }));
+		}),
+	);
+}
+
+/** Lost information: a cell's mean share over the quantities, 1 being the mean cell's; tiny cells are not quite free. */
+export function cellWeights(table: ProtectionTable): number[] {
+	const living = table.cells.filter((cell) => cell.owners > 0).length;
+	const sums = table.quantities.map(({ key }) => table.cells.reduce((sum, c) => sum + c.quantities[key]!.total, 0));
+	const used = sums.filter((sum) => sum > 0).length;
+	return table.cells.map((cell) => {
+		const shares = table.quantities.map(({ key }, q) => (sums[q]! > 0 ? cell.quantities[key]!.total / sums[q]! : 0));
+		return Math.max(1e-3, (shares.reduce((a, b) => a + b, 0) / Math.max(1, used)) * living);
+	});
+}
+
+/** owner -> cells in which this owner is the only one, and whose values this owner therefore knows */
+export function soleHoldings(table: ProtectionTable): Map<string, number[]> {
+	const holdings = new Map<string, number[]>();
+	table.cells.forEach((cell, index) => {
+		if (cell.owners !== 1) return;
+		const owner = cell.soleOwner ?? cell.key;
+		holdings.set(owner, [...(holdings.get(owner) ?? []), index]);
+	});
+	return holdings;
+}
+
+/** Whether a cell lies inside another: in each tree the same code or one below it. */
+export function insideTest(table: ProtectionTable): (inner: number, outer: number) => boolean {
+	const descendants = table.hierarchies.map((tree) => {
+		const children = childrenOf(tree);
+		const sets = new Map<string, Set<string>>();
+		const collect = (code: string): Set<string> => {
+			const set = new Set([code, ...(children.get(code) ?? []).flatMap((child) => [...collect(child)])]);
+			sets.set(code, set);
+			return set;
+		};
+		collect(tree.root);
+		return sets;
+	});
+	return (inner, outer) =>
+		table.cells[outer]!.coordinates.every((code, d) =>
+			descendants[d]!.get(code)!.has(table.cells[inner]!.coordinates[d]!),
+		);
+}

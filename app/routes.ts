@@ -1,0 +1,80 @@
+import { index, layout, prefix, route, type RouteConfig } from "@react-router/dev/routes";
+
+export default [
+	route("healthz", "routes/api/healthz.ts"),
+	route("language", "routes/public/language.ts"),
+
+	// Everything a shell of header, season and footer goes around.
+	layout("routes/public/layout.tsx", [
+		index("routes/public/home.tsx"),
+		route("map", "routes/public/map.tsx"),
+		route("reports", "routes/public/reports.tsx"),
+		route("reports/:slug", "routes/public/report.tsx"),
+		route("methods", "routes/public/methods.tsx"),
+		route("data", "routes/public/data.tsx"),
+		route("data/:release", "routes/public/data-release.tsx"),
+
+		route("sign-in", "routes/public/sign-in.tsx"),
+		route("me", "routes/public/me.tsx"),
+
+		...prefix("dataroom", [
+			layout("routes/dataroom/layout.tsx", [
+				index("routes/dataroom/home.tsx"),
+				route("access", "routes/dataroom/access.tsx"),
+			]),
+		]),
+		route("*", "routes/public/not-found.tsx"),
+	]),
+	route("map/counties.json", "routes/public/map-counties.ts"),
+	route("map/figures/:release/:measure/:crop", "routes/public/map-figures.ts"),
+	route("dataroom/releases/:release/:file", "routes/dataroom/file.ts"),
+
+	route("sign-in/start", "routes/public/sign-in-start.ts"),
+	route("sign-in/callback", "routes/public/sign-in-callback.ts"),
+	route("sign-out", "routes/public/sign-out.ts"),
+
+	// Growers: one column, nothing but the question.
+	layout("routes/grower/layout.tsx", [
+		route("r/:token", "routes/grower/link.tsx"),
+		...prefix("answer/:surveyId/:operationId", [
+			index("routes/grower/start.tsx"),
+			route("ask/:screen", "routes/grower/screen.tsx"),
+			route("review", "routes/grower/review.tsx"),
+			route("receipt", "routes/grower/receipt.tsx"),
+		]),
+		...prefix("orchard", [layout("routes/grower/orchard-layout.tsx", [index("routes/grower/orchard.tsx")])]),
+	]),
+
+	...prefix("desk", [
+		layout("routes/desk/layout.tsx", [
+			index("routes/desk/overview.tsx"),
+			route("growers", "routes/desk/growers.tsx"),
+			route("growers/:operationId", "routes/desk/grower.tsx"),
+			route("surveys", "routes/desk/surveys.tsx"),
+			route("surveys/new", "routes/desk/survey-new.tsx"),
+			...prefix("surveys/:surveyId", [
+				layout("routes/desk/survey-layout.tsx", [
+					index("routes/desk/survey.tsx"),
+					route("responses", "routes/desk/responses.tsx"),
+					route("responses/:responseId", "routes/desk/response.tsx"),
+					route("estimates", "routes/desk/estimates.tsx"),
+					route("release", "routes/desk/release.tsx"),
+				]),
+			]),
+			route("reports", "routes/desk/reports.tsx"),
+			route("reports/:reportId", "routes/desk/report.tsx"),
+		]),
+	]),
+
+	...prefix("network", [
+		layout("routes/network/layout.tsx", [
+			index("routes/network/people.tsx"),
+			route("releases", "routes/network/releases.tsx"),
+			route("releases/:draftId", "routes/network/release.tsx"),
+			route("reports", "routes/network/reports.tsx"),
+			route("reports/:reportId", "routes/network/report.tsx"),
+			route("access", "routes/network/access.tsx"),
+			route("log", "routes/network/log.tsx"),
+		]),
+	]),
+] satisfies RouteConfig;

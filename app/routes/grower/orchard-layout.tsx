@@ -1,0 +1,5 @@
+import { Outlet } from "react-router";
+
+export default function Layout() {
+	return <Outlet />;
+}

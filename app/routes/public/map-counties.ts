@@ -1,0 +1,3 @@
+export function loader() {
+	return new Response(null, { status: 404 });
+}

@@ -1,0 +1,120 @@
+import { sql, type Transaction } from "kysely";
+import type { DB } from "#db/schema.ts";
+import type { CropRespondents, FrameStratum, Tally, TallyOwners } from "#app/tally/tally.ts";
+
+/**
+ * Every tally row of a survey, made by one GROUP BY over its facts.
+ *
+ * A fact is one operation's y and x for one measure and crop, its plantings summed. Facts set aside in review are
+ * counted and left out of the sums; a cell with nothing else is still listed, with n = 0. PostgreSQL's `regr_*`
+ * aggregates give the centred second moments in one stable pass.
+ * @returns rows ordered by measure, crop, county and stratum, so that two runs give the same list.
+ */
+export async function listTallies(trx: Transaction<DB>, surveyId: string): Promise<Tally[]> {
+	const kept = sql`filter (where not set_aside)`;
+	const rows = await trx
+		.selectFrom("collect.fact")
+		.where("survey_id", "=", surveyId)
+		.groupBy(["measure_key", "crop_key", "state_fips", "county_fips", "stratum_key"])
+		.orderBy("measure_key")
+		.orderBy("crop_key")
+		.orderBy("county_fips")
+		.orderBy("stratum_key")
+		.select([
+			"measure_key as measureKey",
+			"crop_key as cropKey",
+			"county_fips as countyFips",
+			"state_fips as stateFips",
+			"stratum_key as stratumKey",
+			sql<number>`(count(*) ${kept})::int`.as("n"),
+			sql<number>`coalesce(sum(y) ${kept}, 0)`.as("sumY"),
+			sql<number>`coalesce(sum(x) ${kept}, 0)`.as("sumX"),
+			sql<number>`coalesce(regr_syy(y, x) ${kept}, 0)`.as("mYY"),
+			sql<number>`coalesce(regr_sxx(y, x) ${kept}, 0)`.as("mXX"),
+			sql<number>`coalesce(regr_sxy(y, x) ${kept}, 0)`.as("mXY"),
+			sql<number>`(count(*) filter (where set_aside))::int`.as("setAside"),
+		])
+		.execute();
+	return rows;
+}
+
+/**
+ * Operations that answered about each crop, by stratum: the whole stratum's count, whichever county the operation
+ * is in and whichever measures it answered. An operation whose facts were all set aside is not counted.
+ */
+export async function listCropRespondents(trx: Transaction<DB>, surveyId: string): Promise<CropRespondents[]> {
+	return trx
+		.selectFrom("collect.fact")
+		.where("survey_id", "=", surveyId)
+		.where("set_aside", "=", false)
+		.groupBy(["crop_key", "stratum_key"])
+		.orderBy("crop_key")
+		.orderBy("stratum_key")
+		.select([
+			"crop_key as cropKey",
+			"stratum_key as stratumKey",
+			sql<number>`count(distinct operation_id)::int`.as("respondents"),
+		])
+		.execute();
+}
+
+/** The strata of a survey's frozen frame, crop by crop: how many operations of each have the crop. */
+export async function listFrameStrata(
+	trx: Transaction<DB>,
+	surveyId: string,
+): Promise<(FrameStratum & { cropKey: string })[]> {
+	return trx
+		.selectFrom("collect.frame_crop as c")
+		.innerJoin("collect.frame_operation as o", (join) =>
+			join.onRef("o.survey_id", "=", "c.survey_id").onRef("o.operation_id", "=", "c.operation_id"),
+		)
+		.where("c.survey_id", "=", surveyId)
+		.groupBy(["c.crop_key", "o.state_fips", "o.size_class", "o.stratum_key"])
+		.orderBy("c.crop_key")
+		.orderBy("o.stratum_key")
+		.select([
+			"c.crop_key as cropKey",
+			"o.stratum_key as stratumKey",
+			"o.state_fips as stateFips",
+			sql<number>`array_position(array['small', 'medium', 'large'], o.size_class)`.as("sizeClass"),
+			sql<number>`count(*)::int`.as("frameSize"),
+		])
+		.execute();
+}
+
+/**
+ * Owners behind each tally row and the two largest contributions, by owner. An owner's operations in the row are
+ * summed first. For looking into a row only: what protects an area is asked of that area, since owners do not add.
+ */
+export async function listTallyOwners(trx: Transaction<DB>, surveyId: string): Promise<TallyOwners[]> {
+	const { rows } = await sql<FlatOwners>`
+		with by_owner as (
+			select measure_key, crop_key, county_fips, state_fips, stratum_key, owner_id, sum(y) as y, sum(x) as x
+			from collect.fact
+			where survey_id = ${surveyId} and not set_aside
+			group by measure_key, crop_key, county_fips, state_fips, stratum_key, owner_id
+		), ranked as (
+			select *, row_number() over (cell order by y desc) as rank_y, row_number() over (cell order by x desc) as rank_x
+			from by_owner
+			window cell as (partition by measure_key, crop_key, county_fips, state_fips, stratum_key)
+		)
+		select measure_key, crop_key, county_fips, state_fips, stratum_key, count(*)::int as owners,
+			max(y) filter (where rank_y = 1) as y1, coalesce(max(y) filter (where rank_y = 2), 0) as y2,
+			max(x) filter (where rank_x = 1) as x1, coalesce(max(x) filter (where rank_x = 2), 0) as x2
+		from ranked
+		group by measure_key, crop_key, county_fips, state_fips, stratum_key
+		order by measure_key, crop_key, county_fips, stratum_key`.execute(trx);
+	return rows.map((row) => ({
+		measureKey: row.measure_key,
+		cropKey: row.crop_key,
+		countyFips: row.county_fips,
+		stateFips: row.state_fips,
+		stratumKey: row.stratum_key,
+		owners: row.owners,
+		largestY: { first: row.y1, second: row.y2 },
+		largestX: { first: row.x1, second: row.x2 },
+	}));
+}
+
+type FlatOwners = Record<"measure_key" | "crop_key" | "county_fips" | "state_fips" | "stratum_key", string> &
+	Record<"owners" | "y1" | "y2" | "x1" | "x2", number>;
