@@ -16,7 +16,7 @@ export type EstimateKind = "total" | "mean" | "ratio" | "proportion";
 export type EstimatedMeasure = { kind: EstimateKind; range?: { lowest?: number; highest?: number } };
 
 /** Why a value or a standard error is missing. */
-export type Missing = "no_respondents" | "one_respondent" | "no_base" | "no_strata";
+export type Missing = "no_respondents" | "one_respondent" | "no_base";
 
 /** A figure for one measure, crop and area. All of it in the units of the value, but `cv`, a fraction. */
 export type Estimate = {
@@ -72,7 +72,7 @@ export function estimateCell(
 		value,
 		standardError,
 		cv,
-		...clip(intervalOf(measure.kind, figure, strata), measure.range),
+		...clip(everybody ? { lower: value, upper: value } : intervalOf(measure.kind, figure, strata), measure.range),
 		respondents,
 		steadiness: steadiness({ cv, standardError, everybody }, cutOffs),
 		joins,
