@@ -1,0 +1,20 @@
+import { sql } from "kysely";
+import type { Trx } from "#app/auth/scope.server.ts";
+
+/** Every kind of queued work with what it takes. Payloads hold ids only: no token, no address, no answer. */
+export type JobPayloads = {
+	send_mail: { mailingId: string };
+	compute_release_draft: { releaseDraftId: string };
+};
+
+/** Queues work in the caller's transaction: neither the decision nor its job happens without the other. */
+export async function queueJob<K extends keyof JobPayloads>(
+	trx: Trx,
+	task: K,
+	payload: JobPayloads[K],
+	options: { jobKey?: string; runAt?: Date; maxAttempts?: number } = {},
+): Promise<void> {
+	await sql`select graphile_worker.add_job(${task}::text, payload := ${JSON.stringify(payload)}::json,
+		run_at := ${options.runAt ?? null}::timestamptz, max_attempts := ${options.maxAttempts ?? null}::int,
+		job_key := ${options.jobKey ?? null}::text)`.execute(trx);
+}
