@@ -1,7 +1,8 @@
+import { liesInside, soleHoldings } from "./attackers.ts";
 import { Augmenter } from "./augment.ts";
 import type { OwnCell } from "./levels.ts";
 import type { Solver } from "./solver.ts";
-import { childrenOf, type ProtectionTable } from "./table.ts";
+import type { ProtectionTable } from "./table.ts";
 
 export interface ShieldOptions {
 	/** Whether single owners of cells are attackers who know those cells. */
@@ -41,16 +42,18 @@ export function chooseShields(
 	const grand = table.cells.findIndex((c) => c.coordinates.every((code, d) => code === table.hierarchies[d]!.root));
 	const augmenter = new Augmenter(solver, table, weights, hidden, new Set(hidden.has(grand) ? [] : [grand]));
 	const find = footingFinder(table, augmenter, options);
+	const hide = (cells: readonly number[]) => {
+		for (const index of cells) if (!hidden.has(index)) augmenter.hide(index);
+	};
 	try {
 		const footings: Footing[] = [];
 		for (const wish of wishesOf(table, own, weights)) {
-			let footing = find(wish, []);
+			let footing = find(wish, [], hide);
 			if (!footing && options.grandTotal === "last_resort" && augmenter.locked.has(grand)) {
 				augmenter.unlock(grand);
-				footing = find(wish, []);
+				footing = find(wish, [], hide);
 			}
 			if (!footing) return null;
-			for (const index of footing) if (!hidden.has(index)) augmenter.hide(index);
 			footings.push({ ...wish, cells: footing });
 		}
 		const ownSet = new Set(own.map(({ index }) => index));
@@ -61,7 +64,11 @@ export function chooseShields(
 	}
 }
 
-type Find = (wish: Omit<Footing, "cells">, fixed: readonly number[]) => Set<number> | null;
+type Find = (
+	wish: Omit<Footing, "cells">,
+	fixed: readonly number[],
+	use?: (cells: readonly number[]) => void,
+) => Set<number> | null;
 
 /** Shows every shield that nothing rests on, or whose dependants can all stand elsewhere among the withheld. */
 function showNeedless(
@@ -102,21 +109,22 @@ function showNeedless(
 function footingFinder(table: ProtectionTable, augmenter: Augmenter, options: ShieldOptions): Find {
 	const holdings = options.ownersAttack ? soleHoldings(table) : new Map<string, number[]>();
 	const ownerOf = new Map([...holdings].flatMap(([owner, cells]) => cells.map((index) => [index, owner] as const)));
-	const below = insideTest(table);
-	return ({ own, quantity, direction }, fixed) => {
+	return ({ own, quantity, direction }, fixed, use) => {
 		const level = own.levels[quantity]! * MARGIN;
 		const value = table.cells[own.index]!.quantities[quantity]!.total;
 		const move = direction > 0 ? level : -Math.min(level, value);
 		const first = augmenter.find({ cell: own.index, quantity, move, fixed });
 		if (!first) return null;
+		use?.(first);
 		const footing = new Set(first);
 		const attackers = new Set(first.flatMap((index) => ownerOf.get(index) ?? []));
 		attackers.delete(ownerOf.get(own.index) ?? "");
 		for (const attacker of attackers) {
 			const known = holdings.get(attacker)!;
-			if (direction < 0 && known.some((index) => below(index, own.index))) continue;
+			if (direction < 0 && known.some((index) => liesInside(table, index, own.index))) continue;
 			const way = augmenter.find({ cell: own.index, quantity, move, fixed: [...fixed, ...known] });
 			if (!way) return null;
+			use?.(way);
 			for (const index of way) footing.add(index);
 		}
 		return footing;
@@ -143,34 +151,4 @@ export function cellWeights(table: ProtectionTable): number[] {
 		const shares = table.quantities.map(({ key }, q) => (sums[q]! > 0 ? cell.quantities[key]!.total / sums[q]! : 0));
 		return Math.max(1e-3, (shares.reduce((a, b) => a + b, 0) / Math.max(1, used)) * living);
 	});
-}
-
-/** owner -> cells in which this owner is the only one, and whose values this owner therefore knows */
-export function soleHoldings(table: ProtectionTable): Map<string, number[]> {
-	const holdings = new Map<string, number[]>();
-	table.cells.forEach((cell, index) => {
-		if (cell.owners !== 1) return;
-		const owner = cell.soleOwner ?? cell.key;
-		holdings.set(owner, [...(holdings.get(owner) ?? []), index]);
-	});
-	return holdings;
-}
-
-/** Whether a cell lies inside another: in each tree the same code or one below it. */
-export function insideTest(table: ProtectionTable): (inner: number, outer: number) => boolean {
-	const descendants = table.hierarchies.map((tree) => {
-		const children = childrenOf(tree);
-		const sets = new Map<string, Set<string>>();
-		const collect = (code: string): Set<string> => {
-			const set = new Set([code, ...(children.get(code) ?? []).flatMap((child) => [...collect(child)])]);
-			sets.set(code, set);
-			return set;
-		};
-		collect(tree.root);
-		return sets;
-	});
-	return (inner, outer) =>
-		table.cells[outer]!.coordinates.every((code, d) =>
-			descendants[d]!.get(code)!.has(table.cells[inner]!.coordinates[d]!),
-		);
 }
