@@ -50,10 +50,9 @@ async function initialize(cluster) {
 	writePrivate(passwordFile, cluster.passwords.admin);
 	cluster.give(passwordFile);
 	try {
-		await inCluster(cluster, "initdb", [
-			...["-D", cluster.data, "-U", "postgres", "--pwfile", passwordFile, "--auth=scram-sha-256"],
-			...["--encoding=UTF8", "--locale=C.UTF-8", cluster.throwaway ? "--no-sync" : "--data-checksums"],
-		]);
+		const where = ["-D", cluster.data, "-U", "postgres", "--pwfile", passwordFile];
+		const how = ["--auth=scram-sha-256", "--encoding=UTF8", "--locale=C.UTF-8"];
+		await inCluster(cluster, "initdb", [...where, ...how, cluster.throwaway ? "--no-sync" : "--data-checksums"]);
 	} catch (error) {
 		rmSync(cluster.data, { recursive: true, force: true }); // half a cluster would look like a whole one next time
 		throw error;

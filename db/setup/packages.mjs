@@ -20,11 +20,11 @@ function isInstalled() {
 	const wanted = readJson(lockFile).packages ?? {};
 	const present = readJson(join(root, "node_modules/.package-lock.json")).packages;
 	if (!present) return false;
-	return Object.entries(wanted).every(([path, { version, optional, link, resolved }]) => {
+	return Object.entries(wanted).every(([path, { version, optional, link, integrity }]) => {
 		if (path === "" || link) return true;
 		const found = present[path];
 		if (!found) return optional === true; // made for another system
-		return found.version === version && found.resolved === resolved;
+		return found.version === version && (!found.integrity || found.integrity === integrity);
 	});
 }
 
