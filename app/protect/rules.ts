@@ -35,7 +35,7 @@ export function checkRules(rules: ProtectionRules): ProtectionRules {
 /**
  * Every reason for which a cell must be withheld for its own sake; empty when it may be shown.
  * Owners are counted, not operations. The p% rule is tried on each quantity, since the cell is shown or withheld as a
- * whole. A cell without owners is a published zero and has no reason. A quantity that is 0 while owners answered (all
+ * whole; so is the measure that the fewest owners answered. A cell without owners is a published zero and has no reason. A quantity that is 0 while owners answered (all
  * was lost) is not dominated: nobody's share can be worked out of it beyond what the count of owners already allows.
  * Source: Handbook on Statistical Disclosure Control (Hundepool et al.), section 4.2: X - x1 - x2 < p/100 x1, strictly.
  */
@@ -43,7 +43,7 @@ export function ownReasons(cell: TableCell, rules: ProtectionRules): OwnReason[]
 	checkRules(rules);
 	if (cell.owners === 0) return [];
 	const reasons: OwnReason[] = [];
-	if (cell.owners < rules.minimumOwners) reasons.push("too_few_owners");
+	if (Math.min(cell.owners, cell.fewestOwners ?? cell.owners) < rules.minimumOwners) reasons.push("too_few_owners");
 	if (Object.values(cell.quantities).some((share) => shortfall(share, rules) > 0)) reasons.push("dominated");
 	return reasons;
 }

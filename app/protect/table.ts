@@ -12,6 +12,8 @@ export interface TableCell {
 	coordinates: readonly string[];
 	/** Distinct owners who answered; 0 means that nobody here grows it. */
 	owners: number;
+	/** Owners behind the measure that the fewest answered, where that is fewer: its figure would be theirs alone. */
+	fewestOwners?: number;
 	quantities: Readonly<Record<string, OwnerShare>>;
 	/** The one owner of a cell with a single owner, so that this owner is tried as an attacker; else null. */
 	soleOwner?: string | null;

@@ -1,0 +1,35 @@
+import type { OwnerShares } from "./owner-shares.ts";
+import { buildTable, type ProtectionTable, type Quantity } from "./table.ts";
+
+/** Code of the whole network in the area tree, and of all crops in the crop tree. */
+export const REGION = "region";
+export const ALL_CROPS = "all";
+
+/** The base quantities of a survey's table. Measures are made of them, so what hides these hides every measure. */
+export const surveyQuantities: readonly Quantity[] = [
+	{ key: "respondents", counted: true, overlapsOver: ["crop"] },
+	{ key: "bearing_trees" },
+	{ key: "normal_crop_lb" },
+	{ key: "harvested_lb" },
+];
+
+/**
+ * A survey's table of area by crop. Cell keys are `area|crop`, as `cellKey(areaKey, cropKey)` makes them.
+ * @param areas every county, district and state of the survey with the area right above; states have `region` above.
+ * @param cropKeys the crops asked about, without `all`.
+ * @throws {RangeError} when shares lie outside the areas or crops, or do not add up.
+ */
+export function surveyTable(
+	areas: readonly { areaKey: string; parentKey: string }[],
+	cropKeys: readonly string[],
+	shares: readonly OwnerShares[],
+): ProtectionTable {
+	return buildTable({
+		hierarchies: [
+			{ name: "area", root: REGION, parent: Object.fromEntries(areas.map((a) => [a.areaKey, a.parentKey])) },
+			{ name: "crop", root: ALL_CROPS, parent: Object.fromEntries(cropKeys.map((key) => [key, ALL_CROPS])) },
+		],
+		quantities: surveyQuantities,
+		cells: shares.map(({ areaKey, cropKey, ...cell }) => ({ ...cell, coordinates: [areaKey, cropKey] })),
+	});
+}
