@@ -1,0 +1,22 @@
+import { comparing } from "#tests/reference/checking.ts";
+import type { Checker } from "#tests/reference/verify/checker.ts";
+import { checkDays } from "#tests/reference/estimation/days.ts";
+import { checkLoneRespondents } from "#tests/reference/estimation/lone.ts";
+import { checkPublished } from "#tests/reference/estimation/published.ts";
+import { checkNamedFigures } from "#tests/reference/estimation/schools.ts";
+import {
+	checkSyntheticDomains,
+	checkSyntheticFigures,
+	checkSyntheticStrata,
+} from "#tests/reference/estimation/synthetic.ts";
+
+/** Design-based estimation: totals, means, ratios, proportions, quantiles and their standard errors. */
+export const checkers: Checker[] = [
+	comparing(/^api_lonely_expected\.json$/, checkLoneRespondents),
+	comparing(/^api_(?!lonely).*_expected\.json$/, checkNamedFigures),
+	comparing(/^published_values\.json$/, checkPublished),
+	comparing(/^synthetic_strata\.csv$/, checkSyntheticStrata),
+	comparing(/^synthetic_domains_expected\.csv$/, checkSyntheticDomains),
+	comparing(/^synthetic_expected\.json$/, checkSyntheticFigures),
+	comparing(/^days_expected\.csv$/, checkDays),
+];
