@@ -173,11 +173,10 @@ export interface CollectReleaseDraft {
 export interface CollectReleaseDraftCell {
   area_key: string;
   crop_key: string;
-  figures: Json;
-  owners: number;
+  figures: Json | null;
   reasons: Generated<string[]>;
   release_draft_id: string;
-  respondents: number;
+  respondents: number | null;
   status: string;
 }
 

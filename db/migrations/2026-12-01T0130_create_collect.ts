@@ -168,6 +168,9 @@ export async function up(db: Kysely<unknown>): Promise<void> {
 		constraint release_draft_second_person check (decided_by <> drafted_by),
 		constraint release_draft_approved_audited check (status <> 'approved' or (audit ->> 'passed')::boolean)
 	)`.execute(db);
+	await sql`create unique index release_draft_one_approved on collect.release_draft (survey_id) where status = 'approved'`.execute(
+		db,
+	);
 	await sql`create table collect.release_draft_cell (
 		release_draft_id uuid not null references collect.release_draft on delete cascade,
 		crop_key text not null,
@@ -175,9 +178,11 @@ export async function up(db: Kysely<unknown>): Promise<void> {
 		status text not null check (status in ('shown', 'withheld', 'no_growers')),
 		-- Only the desk sees which: 'own' and 'shield' become one word once published.
 		reasons text[] not null default '{}',
-		respondents integer not null,
-		owners integer not null,
-		figures jsonb not null,
+		-- Counts and figures of shown cells only: a draft covers states that its reader may not see answers of.
+		respondents integer,
+		figures jsonb,
+		constraint release_draft_cell_hides check ((status = 'shown') = (num_nonnulls(respondents, figures) = 2) and
+			(status = 'shown' or num_nonnulls(respondents, figures) = 0)),
 		primary key (release_draft_id, crop_key, area_key)
 	)`.execute(db);
 

@@ -1,0 +1,83 @@
+import { estimateCell, type Estimate, type EstimateKind } from "#app/estimate/cell.ts";
+import type { SteadinessCutOffs } from "#app/estimate/steadiness.ts";
+import { joinStrata, type Join, type StrataFrame } from "#app/estimate/strata.ts";
+import { groupBy } from "#app/lib/group-by.ts";
+import { type FrameStratum, respondentsByStratum, type Tally } from "#app/tally/tally.ts";
+
+/** What of a measure the estimators need; a form's measures have more. */
+export type SurveyMeasure = { key: string; kind: EstimateKind; scale: number; unit: string };
+
+/** Where a county lies: the keys of every area that holds it, itself first. */
+export type AreasOfCounty = ReadonlyMap<string, readonly string[]>;
+
+export type AreaEstimate = Estimate & { measureKey: string; cropKey: string; areaKey: string };
+export type SurveyEstimates = { estimates: AreaEstimate[]; joins: (Join & { measureKey: string; cropKey: string })[] };
+
+/**
+ * Every estimate of one survey: each measure, crop and area that has a tally row. Values are scaled to the measure's
+ * unit (a share told in percent is 0 to 100), and so are standard errors and interval ends; cv stays a fraction.
+ * Strata are joined once for each measure and crop over all tallies given, so that areas add up.
+ * @param frame the strata of every crop, `all` among them, of the same states as the tallies.
+ * @throws {RangeError} when a tally lies in a county that no area holds, or in a stratum outside the frame.
+ */
+export function estimateSurvey(input: {
+	measures: readonly SurveyMeasure[];
+	frame: readonly (FrameStratum & { cropKey: string })[];
+	tallies: readonly Tally[];
+	areasOfCounty: AreasOfCounty;
+	cutOffs?: SteadinessCutOffs;
+}): SurveyEstimates {
+	const result: SurveyEstimates = { estimates: [], joins: [] };
+	const byMeasure = groupBy(input.tallies, (tally) => tally.measureKey);
+	const frameOfCrop = groupBy(input.frame, (stratum) => stratum.cropKey);
+	for (const measure of input.measures) {
+		const byCrop = groupBy(byMeasure.get(measure.key) ?? [], (tally) => tally.cropKey);
+		for (const [cropKey, tallies] of byCrop) {
+			const strata = joinStrata(frameOfCrop.get(cropKey) ?? [], respondentsByStratum(tallies));
+			result.joins.push(...strata.joins.map((join) => ({ ...join, measureKey: measure.key, cropKey })));
+			for (const [areaKey, rows] of groupByArea(tallies, input.areasOfCounty)) {
+				const estimate = estimateArea(measure, strata, rows, input.cutOffs);
+				result.estimates.push({ ...estimate, measureKey: measure.key, cropKey, areaKey });
+			}
+		}
+	}
+	return result;
+}
+
+function groupByArea(tallies: readonly Tally[], areasOfCounty: AreasOfCounty): Map<string, Tally[]> {
+	const byArea = new Map<string, Tally[]>();
+	for (const tally of tallies) {
+		const areas = areasOfCounty.get(tally.countyFips);
+		if (!areas) throw new RangeError(`county ${tally.countyFips} lies in no area`);
+		for (const areaKey of areas) {
+			const rows = byArea.get(areaKey);
+			if (rows) rows.push(tally);
+			else byArea.set(areaKey, [tally]);
+		}
+	}
+	return byArea;
+}
+
+function estimateArea(
+	measure: SurveyMeasure,
+	strata: StrataFrame,
+	rows: Tally[],
+	cutOffs?: SteadinessCutOffs,
+): Estimate {
+	// A share of a whole cannot leave 0 to 1. A loss can be below 0 (a crop above normal), so only a proportion is cut.
+	const range =
+		measure.kind === "proportion"
+			? { lowest: 0, highest: 1 }
+			: measure.unit === "percent"
+				? { highest: 1 }
+				: { lowest: 0 };
+	const estimate = estimateCell({ kind: measure.kind, range }, strata, rows, cutOffs);
+	const scaled = (value: number | null) => (value === null ? null : value * measure.scale);
+	return {
+		...estimate,
+		value: scaled(estimate.value),
+		standardError: scaled(estimate.standardError),
+		lower: scaled(estimate.lower),
+		upper: scaled(estimate.upper),
+	};
+}

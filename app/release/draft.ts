@@ -1,0 +1,133 @@
+import { z } from "zod";
+import { Measure, Words } from "#app/collect/form.ts";
+
+/** What a release records of how it was made. Read back from jsonb, so each shape is checked again on the way in. */
+export const ReleaseRules = z.object({
+	minimumOwners: z.number().int(),
+	dominancePercent: z.number(),
+	steadyCv: z.number(),
+	careCv: z.number(),
+});
+export type ReleaseRules = z.infer<typeof ReleaseRules>;
+
+const Counted = z.object({ asked: z.number().int(), answered: z.number().int() });
+export const ReleaseMethod = z.object({
+	formKey: z.string(),
+	season: z.number().int(),
+	title: Words,
+	openedAt: z.string(),
+	closedAt: z.string(),
+	all: Counted,
+	states: z.array(Counted.extend({ stateFips: z.string() })),
+	setAside: z.number().int(),
+	joins: z.array(
+		z.object({
+			measureKey: z.string(),
+			cropKey: z.string(),
+			stratumKeys: z.array(z.string()),
+			step: z.enum(["next_size", "state", "network"]),
+		}),
+	),
+	measures: z.array(Measure),
+	areas: z.array(
+		z.object({
+			areaKey: z.string(),
+			kind: z.enum(["county", "district", "state", "region"]),
+			parentKey: z.string().nullable(),
+			stateFips: z.string().nullable(),
+			name: z.string(),
+		}),
+	),
+	cropKeys: z.array(z.string()),
+});
+export type ReleaseMethod = z.infer<typeof ReleaseMethod>;
+
+/** The audit as published with the release: how much is withheld and how safely, no withheld figure, no cell named. */
+export const ReleaseAudit = z.object({
+	passed: z.boolean(),
+	cells: z.number().int(),
+	withheld: z.number().int(),
+	withheldForOwnSake: z.number().int(),
+	shields: z.number().int(),
+	narrowest: z.number().nullable(),
+	widths: z.object({ under1: z.number(), from1to2: z.number(), from2to5: z.number(), from5: z.number() }),
+	linearPrograms: z.number().int(),
+	seconds: z.number(),
+	failures: z.array(z.object({ cellKey: z.string(), quantity: z.string().nullable(), kind: z.string() })),
+});
+export type ReleaseAudit = z.infer<typeof ReleaseAudit>;
+
+export const Steadiness = z.enum(["steady", "care", "rough"]);
+
+/** One figure of a shown cell, in the measure's unit. Rough figures keep their place and lose their numbers. */
+export const DraftFigure = z.object({
+	measureKey: z.string(),
+	value: z.number().nullable(),
+	standardError: z.number().nullable(),
+	cv: z.number().nullable(),
+	lower: z.number().nullable(),
+	upper: z.number().nullable(),
+	steadiness: Steadiness,
+});
+export type DraftFigure = z.infer<typeof DraftFigure>;
+
+export type DraftCell = {
+	cropKey: string;
+	areaKey: string;
+	status: "shown" | "withheld" | "no_growers";
+	/** Why it is withheld; for the desk only. */
+	reasons: string[];
+	respondents: number | null;
+	figures: DraftFigure[] | null;
+};
+
+/**
+ * The band in which a count of respondents lies. Only the band is published: exact counts of two releases could be
+ * subtracted. Bands are our own; they begin at the smallest count that may be shown at all (3).
+ */
+export function respondentsBand(respondents: number): string {
+	if (respondents < 3) throw new RangeError(`a cell with ${respondents} respondents is never shown`);
+	const bands = [
+		[3, 4],
+		[5, 9],
+		[10, 19],
+		[20, 49],
+		[50, 99],
+		[100, 199],
+		[200, 499],
+	] as const;
+	const band = bands.find(([, last]) => respondents <= last);
+	return band ? `${band[0]}-${band[1]}` : "500+";
+}
+
+/**
+ * A figure as it is published: the value rounded to the measure's decimals, the interval outwards to the same, so that
+ * rounding never makes it look surer. A rough figure has no number.
+ */
+export function publishedFigure(figure: DraftFigure, decimals: number): DraftFigure {
+	if (figure.steadiness === "rough" || figure.value === null) {
+		return {
+			measureKey: figure.measureKey,
+			value: null,
+			standardError: null,
+			cv: null,
+			lower: null,
+			upper: null,
+			steadiness: "rough",
+		};
+	}
+	const power = 10 ** decimals;
+	const tidy = (value: number) => Number(value.toFixed(decimals + 2));
+	// 14.000000000000002 is 14: an end is only pushed outwards when it really lies beyond the last digit kept.
+	const outwards = (value: number | null, round: (value: number) => number) =>
+		value === null ? null : round(Number((value * power).toFixed(6))) / power;
+	return {
+		measureKey: figure.measureKey,
+		value: Math.round(figure.value * power) / power,
+		standardError: figure.standardError === null ? null : tidy(figure.standardError),
+		cv: figure.cv === null ? null : Number(figure.cv.toFixed(3)),
+		lower: outwards(figure.lower, Math.floor),
+		upper: outwards(figure.upper, Math.ceil),
+		steadiness: figure.steadiness,
+	};
+}
