@@ -1,15 +1,15 @@
 // This checkout's database, ready to use: cluster, roles, migrations.
 import { join } from "node:path";
+import { asAdmin, startCluster, stopCluster } from "./cluster.mjs";
 import { databaseUrl, ensureDatabase, ensureRoles } from "./roles.mjs";
 import { local, localSecrets, readState, remember, root, writePrivate } from "./local.mjs";
-import { startCluster, stopCluster } from "./cluster.mjs";
 import { atEnd } from "./end.mjs";
 import { run } from "./run.mjs";
 import { step } from "./steps.mjs";
 
 const tsx = join(root, "node_modules/.bin/tsx");
 
-/** @returns the three addresses of the private database. Unless it was left running on purpose, it stops at the end. */
+/** @returns { cluster, addresses } of the private database. Unless it was left running on purpose, it stops at the end. */
 export async function preparePrivateDatabase({ stays = false } = {}) {
 	let cluster;
 	await step("Database cluster", async () => {
@@ -24,11 +24,12 @@ export async function preparePrivateDatabase({ stays = false } = {}) {
 		await ensureRoles(cluster);
 		await ensureDatabase(cluster);
 	});
-	return {
+	const addresses = {
 		DATABASE_URL: databaseUrl(cluster, "app"),
 		DATABASE_READER_URL: databaseUrl(cluster, "reader"),
 		DATABASE_OWNER_URL: databaseUrl(cluster, "owner"),
 	};
+	return { cluster, addresses };
 }
 
 export const migrate = (environment) =>
@@ -42,6 +43,23 @@ export const seed = (environment) =>
 		const { output } = await run(tsx, ["db/seed/seed.ts"], { env: environment });
 		return output.trim().split("\n").at(-1) || "done";
 	});
+
+/**
+ * People are known by issuer and subject. The demo's issuer is an address whose port can be taken by another program one
+ * day; the demo's people then move with it.
+ */
+export async function followIssuer(cluster, issuer) {
+	const before = readState().issuer;
+	if (before && before !== issuer) {
+		await asAdmin(
+			cluster,
+			"tallygrove",
+			`update auth.person p set issuer = '${issuer}' where issuer = '${before}'
+				and not exists (select from auth.person q where q.issuer = '${issuer}' and q.subject = p.subject)`,
+		);
+	}
+	remember({ issuer });
+}
 
 /** Addresses and secret for working on the code by hand: `set -a; . .local/env; set +a`. */
 export function writeEnvironmentFile(addresses) {

@@ -12,11 +12,12 @@ export function atEnd(undo) {
 
 export const isEnding = () => ending !== undefined;
 
-/** Undoes everything once, then leaves with this code. Later calls wait for the first. */
-export function end(code) {
+/** Undoes everything once, says the last words and leaves with this code. Later calls wait for the first. */
+export function end(code, lastWords = () => {}) {
 	ending ??= (async () => {
 		endRunning();
 		for (const undo of undoings.toReversed()) await undo().catch(tell);
+		lastWords();
 		process.exit(code);
 	})();
 	return ending;

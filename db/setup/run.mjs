@@ -10,17 +10,27 @@ const running = new Set();
  * @param options.input text for standard input.
  * @param options.streams lets the output through instead of collecting it.
  * @param options.mayFail gives the exit code back instead of throwing.
+ * @param options.sweeps ends what the program left behind in its group.
  * @param options.unbroken a stop waits for it (a package manager cut short leaves work for its owner).
  * @returns code and collected output.
  */
 export function run(command, args, options = {}) {
-	const { account, input, streams = false, mayFail = false, unbroken = false, env = process.env, cwd } = options;
+	const {
+		account,
+		input,
+		streams = false,
+		mayFail = false,
+		sweeps = false,
+		unbroken = false,
+		env = process.env,
+		cwd,
+	} = options;
 	return new Promise((resolve, reject) => {
 		const child = spawn(command, args, {
 			...account,
 			cwd: cwd ?? (account ? "/" : root),
 			env,
-			detached: unbroken,
+			detached: true, // in a group of its own, which a Ctrl-C does not reach and endRunning ends whole
 			stdio: [input === undefined ? "ignore" : "pipe", streams ? "inherit" : "pipe", streams ? "inherit" : "pipe"],
 		});
 		if (!unbroken) running.add(child);
@@ -39,6 +49,7 @@ export function run(command, args, options = {}) {
 			if (ended) return;
 			ended = true;
 			running.delete(child);
+			if (sweeps) endGroup(child.pid, "SIGKILL");
 			if (code === 0 || mayFail) return resolve({ code: code ?? 1, output });
 			const tail = output.trim().split("\n").slice(-25).join("\n");
 			reject(new Stop(`${[command, ...args].join(" ")} ended with ${signal ?? `code ${code}`}\n${tail}`));
@@ -49,7 +60,15 @@ export function run(command, args, options = {}) {
 	});
 }
 
-/** Ends what is still running, for a stop in the middle of the set-up. */
+/** Ends what is still running, with all it started, for a stop in the middle. */
 export function endRunning() {
-	for (const child of running) child.kill("SIGTERM");
+	for (const child of running) endGroup(child.pid, "SIGTERM");
+}
+
+export function endGroup(pid, signal) {
+	try {
+		process.kill(-pid, signal);
+	} catch {
+		// nothing of it is left
+	}
 }

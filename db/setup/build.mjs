@@ -1,0 +1,37 @@
+// The production build, made anew only when what goes into it changed.
+import { createHash } from "node:crypto";
+import { existsSync, readdirSync, readFileSync, statSync, writeFileSync } from "node:fs";
+import { join, relative } from "node:path";
+import { root } from "./local.mjs";
+import { run } from "./run.mjs";
+
+const folders = ["app", "locales", "public", "db"];
+const files = ["package.json", "package-lock.json", "vite.config.ts", "react-router.config.ts", "tsconfig.json"];
+// Neither is imported by the product.
+const leftOut = /^db\/setup(\/|$)|\.test\.tsx?$/;
+
+function listFiles(path) {
+	if (!existsSync(path) || leftOut.test(relative(root, path))) return [];
+	if (!statSync(path).isDirectory()) return [path];
+	return readdirSync(path)
+		.toSorted()
+		.flatMap((name) => listFiles(join(path, name)));
+}
+
+function sourceHash() {
+	const hash = createHash("sha256");
+	for (const file of [...folders, ...files].flatMap((part) => listFiles(join(root, part)))) {
+		hash.update(`${relative(root, file)}\0`).update(createHash("sha256").update(readFileSync(file)).digest());
+	}
+	return hash.digest("hex");
+}
+
+export async function ensureBuild() {
+	const stamp = join(root, "build/.stamp");
+	const hash = sourceHash();
+	if (existsSync(stamp) && readFileSync(stamp, "utf8") === hash) return "up to date";
+	const env = { ...process.env, NODE_ENV: "production" };
+	await run(process.execPath, ["node_modules/@react-router/dev/bin.js", "build"], { env });
+	writeFileSync(stamp, hash);
+	return "built";
+}
