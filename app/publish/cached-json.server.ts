@@ -1,0 +1,34 @@
+import { createHash } from "node:crypto";
+
+/** How long a copy may be used: `version` for an address that changes with its content, `figures` for one that may change. */
+const caching = {
+	version: "public, max-age=31536000, immutable",
+	figures: "public, max-age=60, stale-while-revalidate=600",
+	none: "no-store",
+};
+
+/** A strong entity tag of the bytes as served, so that it holds nothing that they do not. */
+export function entityTag(body: string): string {
+	return `"${createHash("sha256").update(body).digest("base64url").slice(0, 27)}"`;
+}
+
+/** JSON with a strong ETag: 304 without a body when the asker's copy is still the same. */
+export function cachedJson(request: Request, body: string, keep: keyof typeof caching): Response {
+	const etag = entityTag(body);
+	const headers = { etag, "cache-control": caching[keep] };
+	if (matches(request.headers.get("if-none-match"), etag)) return new Response(null, { status: 304, headers });
+	return new Response(body, { headers: { ...headers, "content-type": "application/json; charset=utf-8" } });
+}
+
+/** A refusal of a resource route, after RFC 9457. Holds the status and its meaning only. */
+export function problem(status: 400 | 404, title: string): Response {
+	return new Response(JSON.stringify({ type: "about:blank", title, status }), {
+		status,
+		headers: { "content-type": "application/problem+json", "cache-control": caching.none },
+	});
+}
+
+function matches(header: string | null, etag: string): boolean {
+	if (!header) return false;
+	return header.split(",").some((tag) => ["*", etag, `W/${etag}`].includes(tag.trim()));
+}

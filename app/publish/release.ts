@@ -1,0 +1,51 @@
+import { z } from "zod";
+
+const Words = z.object({ en: z.string(), es: z.string() });
+export type Words = z.infer<typeof Words>;
+
+/** The settings that a release was made with, as frozen in it. A setting that an older release did not record is absent. */
+const Rules = z.looseObject({ minimumOwners: z.number(), dominancePercent: z.number() }).partial();
+const Method = z
+	.looseObject({ cutOffs: z.object({ steady: z.number(), care: z.number() }), confidence: z.number() })
+	.partial();
+
+export type Release = {
+	releaseId: string;
+	number: number;
+	season: number;
+	formKey: string;
+	title: Words;
+	/** ISO moment. */
+	publishedAt: string;
+	rules: z.infer<typeof Rules>;
+	method: z.infer<typeof Method>;
+	codeVersion: string;
+	checksum: string;
+};
+
+export type ReleaseMeasure = {
+	key: string;
+	label: Words;
+	description: Words;
+	kind: "ratio" | "mean" | "total" | "proportion";
+	unit: string;
+	decimals: number;
+	worse: "more" | "less" | null;
+	hue: Hue;
+};
+export const hues = ["loss", "bloom", "pests", "cold", "yield"] as const;
+export type Hue = (typeof hues)[number];
+
+export type ReleaseArea = {
+	key: string;
+	kind: "county" | "district" | "state" | "region";
+	name: string;
+	parentKey: string | null;
+	stateFips: string | null;
+};
+
+/** Reads a stored pair of texts. @throws when the release holds something else, which its writer prevents. */
+export const toWords = (stored: unknown): Words => Words.parse(stored);
+export const toRules = (stored: unknown): Release["rules"] => Rules.parse(stored);
+export const toMethod = (stored: unknown): Release["method"] => Method.parse(stored);
+export const toHue = (stored: string): Hue => hues.find((hue) => hue === stored) ?? "loss";

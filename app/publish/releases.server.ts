@@ -1,0 +1,135 @@
+import type { Kysely } from "kysely";
+import { reader, type ReaderDB } from "./reader.server.ts";
+import { type Release, type ReleaseArea, type ReleaseMeasure, toHue, toMethod, toRules, toWords } from "./release.ts";
+
+type Reader = Kysely<ReaderDB>;
+
+/** All releases, the latest first. */
+export async function listReleases(db: Reader = reader()): Promise<Release[]> {
+	const rows = await selectReleases(db).orderBy("number", "desc").execute();
+	return rows.map(toRelease);
+}
+
+export async function findRelease(number: number, db: Reader = reader()): Promise<Release | undefined> {
+	const row = await selectReleases(db).where("number", "=", number).executeTakeFirst();
+	return row && toRelease(row);
+}
+
+export async function findReleaseById(releaseId: string, db: Reader = reader()): Promise<Release | undefined> {
+	const row = await selectReleases(db).where("release_id", "=", releaseId).executeTakeFirst();
+	return row && toRelease(row);
+}
+
+/** The release with the highest number: what the home page speaks of. */
+export async function findLatestRelease(db: Reader = reader()): Promise<Release | undefined> {
+	const row = await selectReleases(db).orderBy("number", "desc").limit(1).executeTakeFirst();
+	return row && toRelease(row);
+}
+
+/** The measures of a release, in its own order. */
+export async function listMeasures(releaseId: string, db: Reader = reader()): Promise<ReleaseMeasure[]> {
+	const rows = await db
+		.selectFrom("release.measure")
+		.select(["measure_key", "label", "description", "kind", "unit", "decimals", "worse", "hue"])
+		.where("release_id", "=", releaseId)
+		.orderBy("position")
+		.orderBy("measure_key")
+		.execute();
+	return rows.map((row) => ({
+		key: row.measure_key,
+		label: toWords(row.label),
+		description: toWords(row.description),
+		kind: row.kind as ReleaseMeasure["kind"],
+		unit: row.unit,
+		decimals: row.decimals,
+		worse: row.worse as ReleaseMeasure["worse"],
+		hue: toHue(row.hue),
+	}));
+}
+
+/** The crops of a release, "all" first; for one measure only those for which it has a figure somewhere. */
+export async function listCrops(releaseId: string, measureKey?: string, db: Reader = reader()): Promise<string[]> {
+	const rows = measureKey
+		? await db
+				.selectFrom("release.figure")
+				.select("crop_key")
+				.distinct()
+				.where("release_id", "=", releaseId)
+				.where("measure_key", "=", measureKey)
+				.execute()
+		: await db.selectFrom("release.cell").select("crop_key").distinct().where("release_id", "=", releaseId).execute();
+	return rows.map((row) => row.crop_key).toSorted((a, b) => cropOrder(a).localeCompare(cropOrder(b)));
+}
+
+const cropOrder = (key: string) => (key === "all" ? "" : key);
+
+/** The areas of a release by name; of one kind when asked. */
+export async function listAreas(
+	releaseId: string,
+	kind?: ReleaseArea["kind"],
+	db: Reader = reader(),
+): Promise<ReleaseArea[]> {
+	let query = db
+		.selectFrom("release.area")
+		.select(["area_key", "kind", "name", "parent_key", "state_fips"])
+		.where("release_id", "=", releaseId);
+	if (kind) query = query.where("kind", "=", kind);
+	const rows = await query.orderBy("name").orderBy("area_key").execute();
+	return rows.map((row) => ({
+		key: row.area_key,
+		kind: row.kind as ReleaseArea["kind"],
+		name: row.name,
+		parentKey: row.parent_key,
+		stateFips: row.state_fips,
+	}));
+}
+
+/** The states whose counties a release covers, as FIPS codes. */
+export async function listCoveredStates(releaseId: string, db: Reader = reader()): Promise<string[]> {
+	const rows = await db
+		.selectFrom("release.area")
+		.select("state_fips")
+		.distinct()
+		.where("release_id", "=", releaseId)
+		.where("kind", "=", "county")
+		.where("state_fips", "is not", null)
+		.orderBy("state_fips")
+		.execute();
+	return rows.flatMap((row) => row.state_fips ?? []);
+}
+
+function selectReleases(db: Reader) {
+	return db
+		.selectFrom("release.release")
+		.select([
+			"release_id",
+			"number",
+			"season",
+			"form_key",
+			"title",
+			"published_at",
+			"rules",
+			"method",
+			"code_version",
+			"checksum",
+		]);
+}
+
+type ReleaseRow = Awaited<ReturnType<ReturnType<typeof selectReleases>["executeTakeFirstOrThrow"]>>;
+
+function toRelease(row: ReleaseRow): Release {
+	return {
+		releaseId: row.release_id,
+		number: row.number,
+		season: row.season,
+		formKey: row.form_key,
+		title: toWords(row.title),
+		publishedAt: row.published_at.toISOString(),
+		rules: toRules(row.rules),
+		method: toMethod(row.method),
+		codeVersion: row.code_version,
+		checksum: row.checksum,
+	};
+}
+
+export { countCells, findCells, listCells, listCropCells } from "./cells.server.ts";
