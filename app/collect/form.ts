@@ -1,4 +1,5 @@
 import { z } from "zod";
+import type { Condition as ConditionShape } from "#app/lib/condition.ts";
 
 /** The words of one text in every language of the product. English gives the type; a form without Spanish does not parse. */
 export const Words = z.object({ en: z.string().min(1), es: z.string().min(1) });
@@ -6,20 +7,8 @@ export type Words = z.infer<typeof Words>;
 
 const Key = z.string().regex(/^[a-z][a-z0-9_]*$/);
 
-/**
- * When a question is asked, from earlier answers. `any_planting` holds when its inner condition holds for at least one
- * row of the planting table; inside it, `question` names the table's columns.
- */
-export type Condition =
-	| {
-			compare: "<" | "<=" | "=" | "!=" | ">=" | ">";
-			question: string;
-			to: { value: number | string } | { question: string };
-	  }
-	| { all: Condition[] }
-	| { any: Condition[] }
-	| { not: Condition }
-	| { any_planting: Condition };
+/** When a question is asked, from earlier answers; inside `any_planting`, `question` names the planting table's columns. */
+export type Condition = ConditionShape;
 export const Condition: z.ZodType<Condition> = z.lazy(() =>
 	z.union([
 		z.object({
@@ -98,6 +87,8 @@ export type Screen = z.infer<typeof Screen>;
 /** Σ times · question (· share/100): a linear form of an operation's answers, plantings of the crop summed first. */
 const LinearForm = z.object({
 	terms: z.array(z.object({ question: Key, times: z.number(), share: Key.optional() })).min(1),
+	/** The form's least value: 0 where a gain in one crop must not count as a negative loss to a cause. */
+	atLeast: z.number().optional(),
 });
 /** 1 for an operation where the condition holds for its sums, else 0. */
 const Indicator = z.object({ indicator: Condition });

@@ -181,6 +181,7 @@ export const afterHarvest: FormDefinition = {
 					{ question: "normal_crop", times: 1, share: "cause_freeze" },
 					{ question: "harvested", times: -1, share: "cause_freeze" },
 				],
+				atLeast: 0,
 			},
 			denominator: { terms: [{ question: "normal_crop", times: 1 }] },
 			scale: 100,
