@@ -23,10 +23,15 @@ function appDatabase(): Kysely<DB> {
 	return app;
 }
 
-/** Runs `work` in one transaction under `scope`; the settings end with the transaction. */
-export function scopedTransaction<T>(scope: Scope, work: (trx: Trx) => Promise<T>): Promise<T> {
+/** Runs `work` in one transaction under `scope`; the settings end with the transaction. `repeatable read` sees one moment throughout. */
+export function scopedTransaction<T>(
+	scope: Scope,
+	work: (trx: Trx) => Promise<T>,
+	isolation: "read committed" | "repeatable read" = "read committed",
+): Promise<T> {
 	return appDatabase()
 		.transaction()
+		.setIsolationLevel(isolation)
 		.execute(async (trx) => {
 			await setScope(trx, scope);
 			return work(trx);

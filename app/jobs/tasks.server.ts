@@ -1,13 +1,15 @@
-import type { Task, TaskList } from "graphile-worker";
+import type { Task } from "graphile-worker";
 import { z } from "zod";
 import { computeReleaseDraft } from "./compute-release-draft.server.ts";
 import type { JobPayloads } from "./queue.server.ts";
+import { sendMail } from "./send-mail.server.ts";
 
 /** Reads a payload against its schema: a job queued by an older version fails with a plain message, not half-way. */
-function task<K extends keyof JobPayloads>(schema: z.ZodType<JobPayloads[K]>, work: (payload: JobPayloads[K]) => Promise<void>): Task {
-	return (payload) => work(schema.parse(payload));
+function task<P>(schema: z.ZodType<P>, work: (payload: P) => Promise<void>): Task {
+	return (payload: unknown) => work(schema.parse(payload));
 }
 
-export const tasks: TaskList = {
+export const tasks: Record<keyof JobPayloads, Task> = {
+	send_mail: task(z.object({ mailingId: z.uuid() }), sendMail),
 	compute_release_draft: task(z.object({ releaseDraftId: z.uuid() }), computeReleaseDraft),
 };

@@ -4,8 +4,8 @@ import { log } from "#app/lib/log.server.ts";
 import { tasks } from "./tasks.server.ts";
 
 // The worker is a process of its own, so that a slow audit never holds up a page. Any number may run beside each other.
-const quiet = new Logger(({ scope }) => (level, message) => {
-	if (level === "error" || level === "warning") log[level === "error" ? "error" : "warn"]({ ...scope }, message);
+const quiet = new Logger((scope) => (level, message) => {
+	if (level === "error" || level === "warning") log[level === "error" ? "error" : "warn"](scope, message);
 });
 
 const runner = await run({

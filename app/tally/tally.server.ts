@@ -58,28 +58,24 @@ export async function listCropRespondents(trx: Transaction<DB>, surveyId: string
 		.execute();
 }
 
-/** The strata of a survey's frozen frame, crop by crop: how many operations of each have the crop. */
+/**
+ * The strata of a survey's frozen frame, crop by crop: how many operations of each have the crop. Crop `all` counts the
+ * operations that have any, each once.
+ */
 export async function listFrameStrata(
 	trx: Transaction<DB>,
 	surveyId: string,
 ): Promise<(FrameStratum & { cropKey: string })[]> {
-	return trx
-		.selectFrom("collect.frame_crop as c")
-		.innerJoin("collect.frame_operation as o", (join) =>
-			join.onRef("o.survey_id", "=", "c.survey_id").onRef("o.operation_id", "=", "c.operation_id"),
-		)
-		.where("c.survey_id", "=", surveyId)
-		.groupBy(["c.crop_key", "o.state_fips", "o.size_class", "o.stratum_key"])
-		.orderBy("c.crop_key")
-		.orderBy("o.stratum_key")
-		.select([
-			"c.crop_key as cropKey",
-			"o.stratum_key as stratumKey",
-			"o.state_fips as stateFips",
-			sql<number>`array_position(array['small', 'medium', 'large'], o.size_class)`.as("sizeClass"),
-			sql<number>`count(*)::int`.as("frameSize"),
-		])
-		.execute();
+	const stratum = sql`o.state_fips, o.size_class, o.stratum_key`;
+	const { rows } = await sql<FrameStratum & { cropKey: string }>`
+		select coalesce(c.crop_key, 'all') as "cropKey", o.stratum_key as "stratumKey", o.state_fips as "stateFips",
+			array_position(array['small', 'medium', 'large'], o.size_class) as "sizeClass",
+			count(distinct c.operation_id)::int as "frameSize"
+		from collect.frame_crop c join collect.frame_operation o using (survey_id, operation_id)
+		where c.survey_id = ${surveyId}
+		group by grouping sets ((c.crop_key, ${stratum}), (${stratum}))
+		order by 1, 2`.execute(trx);
+	return rows;
 }
 
 /**
