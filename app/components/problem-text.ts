@@ -1,0 +1,34 @@
+import { useTranslation } from "react-i18next";
+import { useFormat } from "#app/i18n/use-format.ts";
+import type { Problem } from "#app/lib/parse-form.ts";
+
+/** A problem in the words of its field's label: alike beside the field and in the summary. */
+export function useProblemText() {
+	const { t } = useTranslation();
+	const format = useFormat();
+	return (problem: Problem, label: string): string => {
+		// A question makes no noun: "Enter how many did you pick?" reads wrong.
+		const noun = /[?¿]/.test(label) ? t("problem.your_answer") : label.replace(/[:.]\s*$/, "");
+		const detail = Object.entries(problem.detail ?? {}).map(([key, value]) => [
+			key,
+			typeof value === "number" ? format.number(value, decimalsOf(value)) : value,
+		]);
+		const context = detail.some(([key]) => key === "min" || key === "max" || key === "total") ? "limit" : undefined;
+		const values = { ...Object.fromEntries(detail), label: lowerFirst(noun), Label: upperFirst(noun), context };
+		return t([`problem.${problem.code}`, "problem.wrong"], values);
+	};
+}
+
+/** Leaves "ZIP code" and "E-mail" of one letter alone only where the second letter is a capital too. */
+function lowerFirst(text: string): string {
+	return /^\p{Lu}\p{Lu}/u.test(text) ? text : text.charAt(0).toLowerCase() + text.slice(1);
+}
+
+function upperFirst(text: string): string {
+	return text.charAt(0).toUpperCase() + text.slice(1);
+}
+
+/** As many decimals as the number has, up to three. */
+function decimalsOf(value: number): number {
+	return Math.min(3, String(value).split(".")[1]?.length ?? 0);
+}

@@ -1,0 +1,33 @@
+import type { ReactNode } from "react";
+import { useTranslation } from "react-i18next";
+import { Form } from "react-router";
+import { Button } from "./button.tsx";
+import { fieldId, inputClasses } from "./field-frame.tsx";
+
+type SearchBarProps = { label: string; name?: string; defaultValue?: string | null; children?: ReactNode };
+
+/** A search with filters beside it, sent by GET so that a link keeps it. */
+export function SearchBar({ label, name = "q", defaultValue, children }: SearchBarProps) {
+	const { t } = useTranslation();
+	return (
+		<search>
+			<Form method="get" className="mb-5 flex flex-wrap items-end gap-3">
+				<div className="min-w-48 flex-1 sm:max-w-sm">
+					<label htmlFor={fieldId(name)} className="block text-sm font-bold">
+						{label}
+					</label>
+					<input
+						type="search"
+						id={fieldId(name)}
+						name={name}
+						defaultValue={defaultValue ?? ""}
+						maxLength={200}
+						className={`${inputClasses()} mt-1 w-full`}
+					/>
+				</div>
+				{children}
+				<Button kind="secondary">{t("search.submit")}</Button>
+			</Form>
+		</search>
+	);
+}

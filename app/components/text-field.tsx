@@ -1,0 +1,62 @@
+import type { HTMLInputAutoCompleteAttribute, InputHTMLAttributes, ReactNode } from "react";
+import type { Problem } from "#app/lib/parse-form.ts";
+import { classes } from "./classes.ts";
+import { describedBy, FieldFrame, FieldHelp, fieldId, FieldProblem, inputClasses, LabelText } from "./field-frame.tsx";
+
+const widths = { short: "w-32", medium: "w-64", full: "w-full" };
+
+type TextFieldProps = {
+	label: string;
+	name: string;
+	defaultValue?: string | number | null;
+	help?: ReactNode;
+	problem?: Problem;
+	optional?: boolean;
+	type?: "text" | "email" | "tel" | "url" | "search" | "date" | "datetime-local" | "time" | "password";
+	inputMode?: InputHTMLAttributes<HTMLInputElement>["inputMode"];
+	autoComplete?: HTMLInputAutoCompleteAttribute;
+	multiline?: boolean;
+	rows?: number;
+	maxLength?: number;
+	/** A unit that stands beside the box. */
+	suffix?: ReactNode;
+	size?: keyof typeof widths;
+};
+
+/** One labelled box. Uncontrolled: what was typed comes back through `defaultValue`. */
+export function TextField({
+	label,
+	name,
+	help,
+	problem,
+	optional,
+	multiline,
+	rows,
+	suffix,
+	size,
+	...rest
+}: TextFieldProps) {
+	const { defaultValue, type = "text", ...attributes } = rest;
+	const shared = {
+		...attributes,
+		id: fieldId(name),
+		name,
+		defaultValue: defaultValue ?? "",
+		"aria-describedby": describedBy(name, help, problem),
+		"aria-invalid": problem ? true : undefined,
+		className: classes(inputClasses(problem), widths[size ?? (multiline ? "full" : "medium")]),
+	};
+	return (
+		<FieldFrame problem={problem}>
+			<label htmlFor={fieldId(name)} className="font-bold">
+				<LabelText label={label} optional={optional} />
+			</label>
+			<FieldHelp name={name}>{help}</FieldHelp>
+			<FieldProblem name={name} label={label} problem={problem} />
+			<div className="mt-1.5 flex flex-wrap items-center gap-2">
+				{multiline ? <textarea {...shared} rows={rows ?? 4} /> : <input {...shared} type={type} />}
+				{suffix && <span className="text-quiet">{suffix}</span>}
+			</div>
+		</FieldFrame>
+	);
+}
