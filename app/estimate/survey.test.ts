@@ -43,7 +43,7 @@ test("a ratio told in percent weights each stratum by its frame, by hand", () =>
 test("the region equals its only state, and a county without answers has no estimate", () => {
 	const { estimates } = estimateSurvey({ measures: [loss], frame, tallies: tallies.slice(0, 1), areasOfCounty });
 	const byArea = new Map(estimates.map((estimate) => [estimate.areaKey, estimate]));
-	expect([...byArea.keys()].sort()).toEqual(["19", "19169", "IA-5", "network"]);
+	expect([...byArea.keys()].toSorted()).toEqual(["19", "19169", "IA-5", "network"]);
 	expect(byArea.get("network")).toEqual({ ...byArea.get("19"), areaKey: "network" });
 });
 

@@ -27,7 +27,9 @@ function errorOf(expected: unknown, actual: unknown, scale: number): number {
 	if (typeof expected !== "number" || typeof actual !== "number") return Object.is(expected, actual) ? 0 : Infinity;
 	if (!Number.isFinite(expected) || !Number.isFinite(actual)) return Infinity;
 	if (expected === actual) return 0;
-	return Math.abs(actual - expected) / Math.max(Math.abs(expected), Math.abs(scale));
+	// Only an expected value that is itself rounding beside its scale, such as a standard error of 4e-17, is judged by it.
+	const size = Math.abs(expected) > 1e-9 * Math.abs(scale) ? Math.abs(expected) : Math.abs(scale);
+	return Math.abs(actual - expected) / size;
 }
 
 /** A checker from a function that makes comparisons. */
