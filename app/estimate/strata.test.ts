@@ -1,6 +1,6 @@
 import * as fc from "fast-check";
 import { describe, expect, test } from "vitest";
-import { joinStrata, unjoined } from "#app/estimate/strata.ts";
+import { joinStrata, respondentsByStratum, unjoined } from "#app/estimate/strata.ts";
 import type { FrameStratum } from "#app/tally/tally.ts";
 
 /** Strata of one state from [operations, respondents], smallest class first. */
@@ -87,4 +87,17 @@ describe("joining strata", () => {
 test("unjoined strata stay apart whatever their respondents", () => {
 	const { frame } = state("55", [[40, 0], [12, 0]]); // prettier-ignore
 	expect(unjoined(frame, new Map([["55.1", 1]])).strata.map(({ respondents }) => respondents)).toEqual([1, 0]);
+});
+
+test("a stratum's respondents are counted over all its counties", () => {
+	const rows = [
+		{ stratumKey: "55|small", n: 4 },
+		{ stratumKey: "55|large", n: 1 },
+		{ stratumKey: "55|small", n: 3 },
+	];
+	expect([...respondentsByStratum(rows)]).toEqual([
+		["55|small", 7],
+		["55|large", 1],
+	]);
+	expect(respondentsByStratum([]).size).toBe(0);
 });

@@ -1,4 +1,4 @@
-import type { FrameStratum } from "#app/tally/tally.ts";
+import type { FrameStratum, Tally } from "#app/tally/tally.ts";
 
 /** Why strata were joined: to the next size class, to the rest of the state, or to another state's stratum. */
 export type JoinStep = "next_size" | "state" | "network";
@@ -15,6 +15,18 @@ export type StrataFrame = { strata: JoinedStratum[]; joins: Join[] };
 const enough = 2; // a variance needs two respondents
 
 type Group = JoinedStratum & { stateFips: string; sizeClasses: number[]; step: JoinStep | null };
+
+/**
+ * Respondents of each stratum to the measure whose tallies are given: the n_h of the weights, over all counties.
+ * An operation that answered the survey but not this question counts as not having answered, so that its weight
+ * goes to the others of its stratum.
+ * @param tallies all tallies of ONE measure and crop, of every county.
+ */
+export function respondentsByStratum(tallies: Iterable<Pick<Tally, "stratumKey" | "n">>): Map<string, number> {
+	const respondents = new Map<string, number>();
+	for (const { stratumKey, n } of tallies) respondents.set(stratumKey, (respondents.get(stratumKey) ?? 0) + n);
+	return respondents;
+}
 
 /**
  * Joins strata until each has two respondents, and records what was joined.

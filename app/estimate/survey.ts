@@ -1,8 +1,8 @@
 import { estimateCell, type Estimate, type EstimateKind } from "#app/estimate/cell.ts";
 import type { SteadinessCutOffs } from "#app/estimate/steadiness.ts";
-import { joinStrata, type Join, type StrataFrame } from "#app/estimate/strata.ts";
+import { joinStrata, respondentsByStratum, type Join, type StrataFrame } from "#app/estimate/strata.ts";
 import { groupBy } from "#app/lib/group-by.ts";
-import { type FrameStratum, respondentsByStratum, type Tally } from "#app/tally/tally.ts";
+import type { FrameStratum, Tally } from "#app/tally/tally.ts";
 
 /** What of a measure the estimators need; a form's measures have more. */
 export type SurveyMeasure = { key: string; kind: EstimateKind; scale: number; unit: string };

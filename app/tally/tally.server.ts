@@ -1,13 +1,14 @@
 import { sql, type Transaction } from "kysely";
 import type { DB } from "#db/schema.ts";
-import type { CropRespondents, FrameStratum, Tally, TallyOwners } from "#app/tally/tally.ts";
+import type { CropRespondents, FrameStratum, Tally } from "#app/tally/tally.ts";
 
 /**
  * Every tally row of a survey, made by one GROUP BY over its facts.
  *
  * A fact is one operation's y and x for one measure and crop, its plantings summed. Facts set aside in review are
  * counted and left out of the sums; a cell with nothing else is still listed, with n = 0. PostgreSQL's `regr_*`
- * aggregates give the centred second moments in one stable pass.
+ * aggregates give the centred second moments in one stable pass. (PostgreSQL 15, a million facts in 360 cells, two
+ * cores: 0.45 s, where count and plain sums by county and stratum take 0.33 s.)
  * @returns rows ordered by measure, crop, county and stratum, so that two runs give the same list.
  */
 export async function listTallies(trx: Transaction<DB>, surveyId: string): Promise<Tally[]> {
@@ -77,40 +78,3 @@ export async function listFrameStrata(
 		order by 1, 2`.execute(trx);
 	return rows;
 }
-
-/**
- * Owners behind each tally row and the two largest contributions, by owner. An owner's operations in the row are
- * summed first. For looking into a row only: what protects an area is asked of that area, since owners do not add.
- */
-export async function listTallyOwners(trx: Transaction<DB>, surveyId: string): Promise<TallyOwners[]> {
-	const { rows } = await sql<FlatOwners>`
-		with by_owner as (
-			select measure_key, crop_key, county_fips, state_fips, stratum_key, owner_id, sum(y) as y, sum(x) as x
-			from collect.fact
-			where survey_id = ${surveyId} and not set_aside
-			group by measure_key, crop_key, county_fips, state_fips, stratum_key, owner_id
-		), ranked as (
-			select *, row_number() over (cell order by y desc) as rank_y, row_number() over (cell order by x desc) as rank_x
-			from by_owner
-			window cell as (partition by measure_key, crop_key, county_fips, state_fips, stratum_key)
-		)
-		select measure_key, crop_key, county_fips, state_fips, stratum_key, count(*)::int as owners,
-			max(y) filter (where rank_y = 1) as y1, coalesce(max(y) filter (where rank_y = 2), 0) as y2,
-			max(x) filter (where rank_x = 1) as x1, coalesce(max(x) filter (where rank_x = 2), 0) as x2
-		from ranked
-		group by measure_key, crop_key, county_fips, state_fips, stratum_key
-		order by measure_key, crop_key, county_fips, stratum_key`.execute(trx);
-	return rows.map((row) => ({
-		measureKey: row.measure_key,
-		cropKey: row.crop_key,
-		countyFips: row.county_fips,
-		stateFips: row.state_fips,
-		stratumKey: row.stratum_key,
-		owners: row.owners,
-		largestY: { first: row.y1, second: row.y2 },
-		largestX: { first: row.x1, second: row.x2 },
-	}));
-}
-
-type FlatOwners = Record<"measure_key" | "crop_key" | "county_fips" | "state_fips" | "stratum_key", string> &
-	Record<"owners" | "y1" | "y2" | "x1" | "x2", number>;

@@ -1,18 +1,5 @@
 import { expect, test } from "vitest";
-import { addTallies, emptyMoments, respondentsByStratum, tallyOf } from "#app/tally/tally.ts";
-
-test("a stratum's respondents are counted over all its counties", () => {
-	const rows = [
-		{ stratumKey: "55|small", n: 4 },
-		{ stratumKey: "55|large", n: 1 },
-		{ stratumKey: "55|small", n: 3 },
-	];
-	expect([...respondentsByStratum(rows)]).toEqual([
-		["55|small", 7],
-		["55|large", 1],
-	]);
-	expect(respondentsByStratum([]).size).toBe(0);
-});
+import { addTallies, emptyMoments, tallyOf } from "#app/tally/tally.ts";
 
 test("a new answer is an increment", () => {
 	const before = tallyOf([
