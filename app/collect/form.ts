@@ -1,9 +1,8 @@
 import { z } from "zod";
+import { Words } from "#app/lib/words.ts";
 import type { Condition as ConditionShape } from "#app/lib/condition.ts";
 
-/** The words of one text in every language of the product. English gives the type; a form without Spanish does not parse. */
-export const Words = z.object({ en: z.string().min(1), es: z.string().min(1) });
-export type Words = z.infer<typeof Words>;
+export { Words };
 
 const Key = z.string().regex(/^[a-z][a-z0-9_]*$/);
 

@@ -55,3 +55,14 @@ export async function findFormVersion(
 function asStored(definition: FormDefinition): FormDefinition {
 	return JSON.parse(JSON.stringify(definition)) as FormDefinition;
 }
+
+/** The form of a survey, in the version that its growers see. */
+export async function findSurveyForm(trx: Trx, surveyId: string): Promise<FormDefinition | undefined> {
+	const row = await trx
+		.selectFrom("collect.survey as s")
+		.innerJoin("collect.form_version as v", "v.form_version_id", "s.form_version_id")
+		.select("v.definition")
+		.where("s.survey_id", "=", surveyId)
+		.executeTakeFirst();
+	return row && FormDefinition.parse(row.definition);
+}

@@ -5,6 +5,7 @@ import enGrower from "#locales/en/grower.json" with { type: "json" };
 import enMail from "#locales/en/mail.json" with { type: "json" };
 import enNetwork from "#locales/en/network.json" with { type: "json" };
 import enPublic from "#locales/en/public.json" with { type: "json" };
+import enRelease from "#locales/en/release.json" with { type: "json" };
 import esCommon from "#locales/es/common.json" with { type: "json" };
 import esDataroom from "#locales/es/dataroom.json" with { type: "json" };
 import esDesk from "#locales/es/desk.json" with { type: "json" };
@@ -12,6 +13,7 @@ import esGrower from "#locales/es/grower.json" with { type: "json" };
 import esMail from "#locales/es/mail.json" with { type: "json" };
 import esNetwork from "#locales/es/network.json" with { type: "json" };
 import esPublic from "#locales/es/public.json" with { type: "json" };
+import esRelease from "#locales/es/release.json" with { type: "json" };
 
 /** All words of the product, for the server. A browser loads one language only (`load-language.client.ts`). */
 export const resources = {
@@ -23,6 +25,7 @@ export const resources = {
 		mail: enMail,
 		network: enNetwork,
 		public: enPublic,
+		release: enRelease,
 	},
 	es: {
 		common: esCommon,
@@ -32,5 +35,6 @@ export const resources = {
 		mail: esMail,
 		network: esNetwork,
 		public: esPublic,
+		release: esRelease,
 	},
 };

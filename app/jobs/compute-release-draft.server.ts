@@ -1,6 +1,7 @@
 import { sql } from "kysely";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
-import { FormDefinition, Words } from "#app/collect/form.ts";
+import { FormDefinition } from "#app/collect/form.ts";
+import { Words } from "#app/lib/words.ts";
 import { listAreas } from "#app/directory/areas.server.ts";
 import { estimateSurvey } from "#app/estimate/survey.ts";
 import { log } from "#app/lib/log.server.ts";
@@ -8,11 +9,11 @@ import { listOwnerShares } from "#app/protect/owner-shares.server.ts";
 import type { OwnerShares } from "#app/protect/owner-shares.ts";
 import { cellKey, protect } from "#app/protect/protect.ts";
 import { ALL_CROPS, surveyTable } from "#app/protect/survey-table.ts";
-import { assembleCells } from "#app/release/assemble.ts";
 import { type DraftCell, ReleaseAudit, type ReleaseMethod, ReleaseRules } from "#app/release/draft.ts";
 import { draftChecksum } from "#app/release/publish.server.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
 import type { FrameStratum, Tally } from "#app/tally/tally.ts";
+import { assembleCells } from "./assemble-cells.ts";
 
 type Inputs = {
 	rules: ReleaseRules;

@@ -1,5 +1,5 @@
 import { z } from "zod";
-import { Measure, Words } from "#app/collect/form.ts";
+import { Words } from "#app/lib/words.ts";
 
 /** What a release records of how it was made. Read back from jsonb, so each shape is checked again on the way in. */
 export const ReleaseRules = z.object({
@@ -9,6 +9,21 @@ export const ReleaseRules = z.object({
 	careCv: z.number(),
 });
 export type ReleaseRules = z.infer<typeof ReleaseRules>;
+
+/** A measure as a release records it: what a reader of the figures needs, whatever form asked for it. */
+const ReleaseMeasure = z.object({
+	key: z.string(),
+	kind: z.enum(["ratio", "mean", "total", "proportion"]),
+	label: Words,
+	description: Words,
+	unit: z.enum(["percent", "lb_per_tree", "lb", "trees", "operations", "percent_of_normal"]),
+	decimals: z.number().int(),
+	worse: z.enum(["more", "less"]).nullable(),
+	hue: z.string(),
+	acrossCrops: z.boolean(),
+	/** Shown value = estimate x scale. */
+	scale: z.number(),
+});
 
 const Counted = z.object({ asked: z.number().int(), answered: z.number().int() });
 export const ReleaseMethod = z.object({
@@ -28,7 +43,7 @@ export const ReleaseMethod = z.object({
 			step: z.enum(["next_size", "state", "network"]),
 		}),
 	),
-	measures: z.array(Measure),
+	measures: z.array(ReleaseMeasure),
 	areas: z.array(
 		z.object({
 			areaKey: z.string(),

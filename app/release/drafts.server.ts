@@ -1,7 +1,7 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
-import { Words } from "#app/collect/form.ts";
+import { Words } from "#app/lib/words.ts";
 import { type DraftCell, DraftFigure, ReleaseAudit, ReleaseMethod, ReleaseRules } from "./draft.ts";
 
 export type DraftStatus = "queued" | "failed" | "audit_failed" | "audited" | "approved" | "rejected" | "superseded";

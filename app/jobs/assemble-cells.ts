@@ -2,7 +2,7 @@ import type { AreaEstimate } from "#app/estimate/survey.ts";
 import { groupBy } from "#app/lib/group-by.ts";
 import type { OwnerShares } from "#app/protect/owner-shares.ts";
 import { cellKey, type Protection } from "#app/protect/protect.ts";
-import type { DraftCell, DraftFigure, ReleaseMethod } from "./draft.ts";
+import type { DraftCell, DraftFigure, ReleaseMethod } from "#app/release/draft.ts";
 
 /**
  * The cells of a draft: every crop, and all crops together, in every area. Only shown cells get a count and figures.

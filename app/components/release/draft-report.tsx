@@ -1,0 +1,229 @@
+import { useTranslation } from "react-i18next";
+import { Form } from "react-router";
+import { Button } from "#app/components/button.tsx";
+import { ChoiceField } from "#app/components/choice-field.tsx";
+import { type Column, DataTable } from "#app/components/data-table.tsx";
+import { DescriptionList } from "#app/components/description-list.tsx";
+import { Figure } from "#app/components/figure.tsx";
+import { Section } from "#app/components/section.tsx";
+import { StatusBadge } from "#app/components/status-badge.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
+import type { Unit } from "#app/lib/format.ts";
+
+type Words = { en: string; es: string };
+type ReportFigure = {
+	measureKey: string;
+	value: number | null;
+	lower: number | null;
+	upper: number | null;
+	steadiness: "steady" | "care" | "rough";
+};
+type ReportRow = {
+	areaKey: string;
+	name: string;
+	parent: string;
+	status: "shown" | "withheld" | "no_growers";
+	reason: "own" | "shield" | "nobody_answered" | null;
+	respondents: number | null;
+	figures: ReportFigure[];
+};
+export type DraftReportProps = {
+	audit: {
+		passed: boolean;
+		cells: number;
+		withheldForOwnSake: number;
+		shields: number;
+		narrowest: number | null;
+		linearPrograms: number;
+		seconds: number;
+		failures: unknown[];
+	};
+	rules: { minimumOwners: number; dominancePercent: number; steadyCv: number; careCv: number };
+	asked: number;
+	answered: number;
+	setAside: number;
+	joinCount: number;
+	checksum: string | null;
+	counts: { kind: string; shown: number; withheld: number; noGrowers: number }[];
+	measures: { key: string; label: Words; unit: Unit; decimals: number }[];
+	cropKeys: string[];
+	rows: ReportRow[];
+	choice: { crop: string; kind: string };
+};
+
+/** A draft as its reviewers read it: the audit, how much is withheld, and the figures that would be published. */
+export function DraftReport(props: DraftReportProps) {
+	const { t } = useTranslation("release");
+	return (
+		<>
+			<Section title={t("audit.title")}>
+				<AuditFacts {...props} />
+			</Section>
+			<Section title={t("counts.title")}>
+				<CountTable counts={props.counts} />
+			</Section>
+			<Section title={t("cells.title")}>
+				<CellFilter cropKeys={props.cropKeys} choice={props.choice} />
+				<CellTable {...props} />
+			</Section>
+		</>
+	);
+}
+
+function AuditFacts({ audit, rules, asked, answered, setAside, joinCount, checksum }: DraftReportProps) {
+	const { t } = useTranslation("release");
+	const format = useFormat();
+	const room = audit.narrowest;
+	return (
+		<DescriptionList
+			items={[
+				{
+					term: t("audit.result"),
+					detail: (
+						<StatusBadge tone={audit.passed ? "good" : "stop"}>
+							{t(audit.passed ? "audit.passed" : "audit.failed", { count: audit.failures.length })}
+						</StatusBadge>
+					),
+				},
+				{
+					term: t("audit.tried"),
+					detail: t("audit.triedDetail", {
+						programs: format.number(audit.linearPrograms),
+						seconds: format.number(audit.seconds, 1),
+					}),
+				},
+				{
+					term: t("audit.narrowest"),
+					detail: room === null ? t("audit.unbounded") : t("audit.narrowestDetail", { times: format.number(room, 2) }),
+				},
+				{
+					term: t("audit.withheld"),
+					detail: t("audit.withheldDetail", {
+						own: format.number(audit.withheldForOwnSake),
+						shields: format.number(audit.shields),
+					}),
+				},
+				{
+					term: t("audit.rules"),
+					detail: t("audit.rulesDetail", {
+						owners: format.number(rules.minimumOwners),
+						percent: format.number(rules.dominancePercent),
+						steady: format.number(rules.steadyCv * 100),
+						care: format.number(rules.careCv * 100),
+					}),
+				},
+				{
+					term: t("audit.answers"),
+					detail: t("audit.answersDetail", {
+						answered: format.number(answered),
+						asked: format.number(asked),
+						rate: format.number(asked === 0 ? 0 : (100 * answered) / asked),
+					}),
+				},
+				{ term: t("audit.setAside"), detail: format.number(setAside) },
+				{ term: t("audit.joins"), detail: format.number(joinCount) },
+				{ term: t("audit.checksum"), detail: <code className="text-xs">{checksum ?? ""}</code> },
+			]}
+		/>
+	);
+}
+
+function CountTable({ counts }: Pick<DraftReportProps, "counts">) {
+	const { t } = useTranslation("release");
+	const format = useFormat();
+	const number = (key: "shown" | "withheld" | "noGrowers") => ({
+		key,
+		header: t(`counts.${key}`),
+		numeric: true,
+		cell: (row: DraftReportProps["counts"][number]) => format.number(row[key]),
+	});
+	return (
+		<DataTable
+			caption={t("counts.caption")}
+			captionHidden
+			rows={counts}
+			rowKey={(row) => row.kind}
+			columns={[
+				{ key: "kind", header: t("counts.level"), cell: (row) => t(`common:areaKind.plural.${row.kind}`) },
+				number("shown"),
+				number("withheld"),
+				number("noGrowers"),
+			]}
+		/>
+	);
+}
+
+function CellFilter({ cropKeys, choice }: Pick<DraftReportProps, "cropKeys" | "choice">) {
+	const { t } = useTranslation("release");
+	return (
+		<Form method="get" preventScrollReset className="mb-5 flex flex-wrap items-end gap-4">
+			<ChoiceField
+				kind="select"
+				name="crop"
+				legend={t("estimates.crop")}
+				defaultValue={choice.crop}
+				options={["all", ...cropKeys].map((key) => ({ value: key, label: t(`common:crop.${key}`) }))}
+			/>
+			<ChoiceField
+				kind="select"
+				name="kind"
+				legend={t("estimates.level")}
+				defaultValue={choice.kind}
+				options={["region", "state", "district", "county"].map((kind) => ({
+					value: kind,
+					label: t(`common:areaKind.plural.${kind}`),
+				}))}
+			/>
+			<Button kind="secondary">{t("estimates.show")}</Button>
+		</Form>
+	);
+}
+
+function CellTable({ rows, measures, choice }: DraftReportProps) {
+	const { t, i18n } = useTranslation("release");
+	const format = useFormat();
+	const columns: Column<ReportRow>[] = [
+		{
+			key: "area",
+			header: t(`common:areaKind.${choice.kind}`),
+			cell: (row) => (
+				<>
+					{row.name}
+					{row.parent && <span className="block text-xs text-quiet">{row.parent}</span>}
+				</>
+			),
+		},
+		{ key: "status", header: t("cells.status"), cell: (row) => <CellStatus row={row} /> },
+		{
+			key: "answers",
+			header: t("estimates.answers"),
+			numeric: true,
+			cell: (row) => (row.respondents === null ? "" : format.number(row.respondents)),
+		},
+		...measures.map((measure) => ({
+			key: measure.key,
+			header: wordsIn(measure.label, i18n.language),
+			numeric: true,
+			cell: (row: ReportRow) => {
+				const figure = row.figures.find((one) => one.measureKey === measure.key);
+				return <Figure status={row.status} {...figure} unit={measure.unit} decimals={measure.decimals} />;
+			},
+		})),
+	];
+	return (
+		<DataTable
+			caption={t("cells.caption", { crop: t(`common:crop.${choice.crop}`) })}
+			rows={rows}
+			rowKey={(row) => row.areaKey}
+			columns={columns}
+			empty={<p className="text-quiet">{t("cells.empty")}</p>}
+		/>
+	);
+}
+
+function CellStatus({ row }: { row: ReportRow }) {
+	const { t } = useTranslation("release");
+	if (row.status === "shown") return <StatusBadge tone="good">{t("cells.shown")}</StatusBadge>;
+	return <StatusBadge tone="neutral">{t(`cells.reason.${row.reason ?? "own"}`)}</StatusBadge>;
+}
