@@ -61,7 +61,7 @@ export function auditPattern(
 		const blocks = blocksOf(table, quantity, withheld);
 		const intervals = new Map(blocks.flatMap((block) => intervalsOf(solver, block)));
 		linearPrograms += 2 * intervals.size;
-		for (const [index, [lower, upper]] of intervals) if (upper - lower > 1e-9 * (1 + upper)) open.add(index);
+		for (const [index, [lower, upper]] of intervals) if (upper > lower + 1e-9 * (1 + lower)) open.add(index);
 		for (const cell of own) {
 			const level = cell.levels[quantity.key]!;
 			if (level === 0) continue;
