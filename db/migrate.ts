@@ -3,17 +3,18 @@ import path from "node:path";
 import { fileURLToPath } from "node:url";
 import { runMigrations } from "graphile-worker";
 import { FileMigrationProvider, Kysely, Migrator, PostgresDialect, sql } from "kysely";
-import pg from "pg";
+import { Pool } from "pg";
+import { loadReference } from "./reference.ts";
 
 const migrationFolder = path.join(path.dirname(fileURLToPath(import.meta.url)), "migrations");
 
 /**
  * Brings a database to the newest version: the product's own migrations as the owner, then the queue's tables as the
- * application's role, which must own them (their row-level security lets nobody else in).
+ * application's role, which must own them (their row-level security lets nobody else in), then the reference data.
  */
 export async function migrate(ownerUrl: string, appUrl: string): Promise<string[]> {
 	const db = new Kysely<unknown>({
-		dialect: new PostgresDialect({ pool: new pg.Pool({ connectionString: ownerUrl, max: 1 }) }),
+		dialect: new PostgresDialect({ pool: new Pool({ connectionString: ownerUrl, max: 1 }) }),
 	});
 	try {
 		const migrator = new Migrator({
@@ -24,6 +25,7 @@ export async function migrate(ownerUrl: string, appUrl: string): Promise<string[
 		const { error, results = [] } = await migrator.migrateToLatest();
 		if (error) throw error;
 		await migrateQueue(db, appUrl);
+		await loadReference(ownerUrl);
 		return results.map((result) => result.migrationName);
 	} finally {
 		await db.destroy();

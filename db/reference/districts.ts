@@ -1,0 +1,43 @@
+/**
+ * The network's own grouping of neighbouring counties, 8 to 12 each, named by their place in the state. Kept as data and not
+ * computed, so that a district stays what it was when figures were published for it. County codes without the state's two
+ * digits. Every county lies in one district and every district hangs together: db/reference.test.ts.
+ */
+export const districts: readonly (readonly [key: string, name: string, counties: string])[] = [
+	["IL-1", "Northwest Illinois", "015 071 073 085 095 131 143 161 175 187 195"],
+	["IL-2", "North Central Illinois", "007 011 037 099 103 105 123 141 155 177 201 203"],
+	["IL-3", "Northeast Illinois", "031 043 053 063 075 089 091 093 097 111 197"],
+	["IL-4", "West Central Illinois", "001 009 013 061 067 083 109 137 149 169 171"],
+	["IL-5", "Central Illinois", "017 021 057 107 113 115 117 125 129 135 167 179"],
+	["IL-6", "East Central Illinois", "019 023 029 035 039 041 045 139 147 173 183"],
+	["IL-7", "Southwest Illinois", "003 005 027 077 119 133 145 157 163 181 189"],
+	["IL-8", "South Central Illinois", "049 051 055 065 081 087 121 127 151 153 165 199"],
+	["IL-9", "Southeast Illinois", "025 033 047 059 069 079 101 159 185 191 193"],
+	["IA-1", "Northwest Iowa", "021 035 041 059 063 119 141 143 147 149 167"],
+	["IA-2", "North Central Iowa", "033 067 069 081 091 109 131 151 189 195 197"],
+	["IA-3", "Northeast Iowa", "005 013 017 019 023 037 043 065 089 191"],
+	["IA-4", "West Central Iowa", "009 025 027 047 077 085 093 133 161 165 193"],
+	["IA-5", "Central Iowa", "015 049 073 075 079 083 099 127 153 169 187"],
+	["IA-6", "East Central Iowa", "011 031 045 055 061 095 097 105 113 157 163 171"],
+	["IA-7", "Southwest Iowa", "001 003 029 071 129 137 145 155 159 173 175"],
+	["IA-8", "South Central Iowa", "007 039 053 117 121 123 125 135 179 181 185"],
+	["IA-9", "Southeast Iowa", "051 057 087 101 103 107 111 115 139 177 183"],
+	["MN-1", "Northwest Minnesota", "027 069 087 089 107 111 113 119 125 167"],
+	["MN-2", "North Central Minnesota", "005 007 021 029 057 077 135 153 159"],
+	["MN-3", "Northeast Minnesota", "001 017 031 035 061 071 075 097 115 137"],
+	["MN-4", "West Central Minnesota", "011 023 041 051 073 121 149 151 155 173"],
+	["MN-5", "Central Minnesota", "009 019 067 085 093 129 141 145 171"],
+	["MN-6", "East Central Minnesota", "003 025 037 053 059 065 095 123 139 163"],
+	["MN-7", "Southwest Minnesota", "015 033 063 081 083 101 105 117 127 133"],
+	["MN-8", "South Central Minnesota", "013 043 047 079 091 103 143 161 165"],
+	["MN-9", "Southeast Minnesota", "039 045 049 055 099 109 131 147 157 169"],
+	["WI-1", "Northwest Wisconsin", "005 013 017 031 033 095 109 129"],
+	["WI-2", "North Central Wisconsin", "003 007 051 069 099 107 113 119"],
+	["WI-3", "Northeast Wisconsin", "037 041 067 075 078 083 085 125"],
+	["WI-4", "West Central Wisconsin", "011 035 053 063 081 091 093 121"],
+	["WI-5", "Central Wisconsin", "001 019 057 073 097 135 137 141"],
+	["WI-6", "East Central Wisconsin", "009 015 029 061 071 087 115 139"],
+	["WI-7", "Southwest Wisconsin", "023 043 045 049 065 103 111 123"],
+	["WI-8", "South Central Wisconsin", "021 025 027 047 055 077 105 127"],
+	["WI-9", "Southeast Wisconsin", "039 059 079 089 101 117 131 133"],
+];
