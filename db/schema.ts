@@ -311,6 +311,9 @@ export interface PublishReport {
   content: Json;
   created_at: Generated<Timestamp>;
   created_by: string;
+  edit: Generated<number>;
+  edited_by: Generated<string[]>;
+  note: string | null;
   published_at: Timestamp | null;
   published_by: string | null;
   release_id: string;
