@@ -34,8 +34,8 @@ async function checkTable(file: string) {
 		primary.map(position),
 	);
 	for (const { index, levels } of own) {
-		const cell = stored.cells.find(({ i }) => position(i) === index)!;
-		seen.number(levels[VALUE]!, cell.protection);
+		const cell = stored.cells.find(({ i }) => position(i) === index);
+		seen.number(levels[VALUE], cell?.protection ?? 0);
 	}
 	for (const [withheld, expected] of [
 		[primary, bare.intervals],
@@ -44,9 +44,9 @@ async function checkTable(file: string) {
 	] as const) {
 		const found = feasibleIntervals(solver, table, { key: VALUE }, new Set(withheld.map(position)));
 		for (const [cell, [lower, upper]] of Object.entries(expected)) {
-			const [from, to] = found.get(table.cells[position(Number(cell))]!.key)!;
-			seen.number(from, lower ?? -Infinity);
-			seen.number(to, upper ?? Infinity);
+			const interval = found.get(table.cells[position(Number(cell))]!.key);
+			seen.number(interval?.[0], lower ?? -Infinity);
+			seen.number(interval?.[1], upper ?? Infinity);
 		}
 	}
 	const ownPositions = new Set(own.map(({ index }) => index));
