@@ -2,7 +2,7 @@ import type { OwnerShares } from "./owner-shares.ts";
 import { buildTable, type ProtectionTable, type Quantity } from "./table.ts";
 
 /** Code of the whole network in the area tree, and of all crops in the crop tree. */
-export const REGION = "region";
+export const REGION = "network";
 export const ALL_CROPS = "all";
 
 /** The base quantities of a survey's table. Measures are made of them, so what hides these hides every measure. */

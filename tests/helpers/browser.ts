@@ -1,0 +1,51 @@
+import AxeBuilder from "@axe-core/playwright";
+import { type Browser, type BrowserContextOptions, chromium, type Page } from "playwright-core";
+
+const flags = [
+	"--no-sandbox",
+	"--disable-quic",
+	"--no-first-run",
+	"--disable-background-networking",
+	"--disable-component-update",
+	"--disable-sync",
+	// WebGL in software, without a warning for each map.
+	"--use-angle=swiftshader",
+	"--enable-unsafe-swiftshader",
+];
+
+export const phone: BrowserContextOptions = { viewport: { width: 375, height: 740 }, hasTouch: true, isMobile: true };
+export const desktop: BrowserContextOptions = { viewport: { width: 1280, height: 900 } };
+
+export function openBrowser(): Promise<Browser> {
+	return chromium.launch({ executablePath: process.env.CHROMIUM_PATH ?? "/usr/bin/chromium", args: flags });
+}
+
+/** A page of a person's own: no cookie shared with any other. What its console complains of is kept. */
+export async function openPage(browser: Browser, options: BrowserContextOptions & { language?: string } = {}) {
+	const { language = "en-US", ...context } = options;
+	const page = await (await browser.newContext({ locale: language, ...desktop, ...context })).newPage();
+	const complaints: string[] = [];
+	page.on("pageerror", (error) => complaints.push(`${page.url()}: ${error.message}`));
+	page.on("console", (message) => {
+		if (message.type() === "error") complaints.push(`${page.url()}: ${message.text()}`);
+	});
+	page.setDefaultTimeout(15_000);
+	return Object.assign(page, { complaints });
+}
+
+/** Every rule of WCAG 2.2 A and AA that axe can check, as one line a finding. */
+export async function axeFindings(page: Page): Promise<string[]> {
+	const { violations } = await new AxeBuilder({ page })
+		.withTags(["wcag2a", "wcag2aa", "wcag21a", "wcag21aa", "wcag22aa"])
+		.analyze();
+	return violations.map(
+		(finding) => `${page.url()} ${finding.id}: ${finding.nodes.map((node) => node.target.join(" ")).join("; ")}`,
+	);
+}
+
+/** Signs in through the provider's own page as one of its people. */
+export async function signIn(page: Page, baseUrl: string, name: string): Promise<void> {
+	await page.goto(`${baseUrl}/sign-in/start`);
+	await page.getByText(name, { exact: false }).first().click();
+	await page.waitForURL(`${baseUrl}/**`);
+}
