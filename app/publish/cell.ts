@@ -5,6 +5,9 @@ export type Steadiness = "steady" | "care" | "rough";
 export const areaKinds = ["county", "district", "state", "region"] as const;
 export type AreaKind = (typeof areaKinds)[number];
 
+/** A cell with how a map draws it: its class only where its number is shown. */
+export type MapCell = Cell & { look: CellLook; classIndex: number | null };
+
 /** One released figure with its area, in the measure's shown unit. Whatever is not shown has null for every number. */
 export type Cell = {
 	areaKey: string;

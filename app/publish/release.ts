@@ -1,12 +1,20 @@
 import { z } from "zod";
-
-const Words = z.object({ en: z.string(), es: z.string() });
-export type Words = z.infer<typeof Words>;
+import type { Unit } from "#app/lib/format.ts";
+import { Words } from "#app/lib/words.ts";
 
 /** The settings that a release was made with, as frozen in it. A setting that an older release did not record is absent. */
-const Rules = z.looseObject({ minimumOwners: z.number(), dominancePercent: z.number() }).partial();
+const Rules = z
+	.object({ minimumOwners: z.number(), dominancePercent: z.number(), steadyCv: z.number(), careCv: z.number() })
+	.partial();
+const Counted = z.object({ asked: z.number(), answered: z.number() });
 const Method = z
-	.looseObject({ cutOffs: z.object({ steady: z.number(), care: z.number() }), confidence: z.number() })
+	.object({
+		openedAt: z.string(),
+		closedAt: z.string(),
+		all: Counted,
+		states: z.array(Counted.extend({ stateFips: z.string() })),
+		setAside: z.number(),
+	})
 	.partial();
 
 export type Release = {
@@ -28,7 +36,7 @@ export type ReleaseMeasure = {
 	label: Words;
 	description: Words;
 	kind: "ratio" | "mean" | "total" | "proportion";
-	unit: string;
+	unit: Unit;
 	decimals: number;
 	worse: "more" | "less" | null;
 	hue: Hue;

@@ -40,7 +40,7 @@ export async function listMeasures(releaseId: string, db: Reader = reader()): Pr
 		label: toWords(row.label),
 		description: toWords(row.description),
 		kind: row.kind as ReleaseMeasure["kind"],
-		unit: row.unit,
+		unit: row.unit as ReleaseMeasure["unit"],
 		decimals: row.decimals,
 		worse: row.worse as ReleaseMeasure["worse"],
 		hue: toHue(row.hue),

@@ -1,3 +1,150 @@
-export default function Page() {
-	return null;
+import { useState } from "react";
+import { useTranslation } from "react-i18next";
+import { href, type ShouldRevalidateFunctionArgs, useNavigate, useSearchParams } from "react-router";
+import type { Route } from "./+types/map";
+import { EmptyState } from "#app/components/empty-state.tsx";
+import { useAreaName } from "#app/components/map/area-name.ts";
+import { CountyMap } from "#app/components/map/county-map.tsx";
+import { Legend } from "#app/components/map/legend.tsx";
+import { Notice } from "#app/components/notice.tsx";
+import { Page } from "#app/components/page.tsx";
+import { localeOf, wordsIn } from "#app/i18n/language.ts";
+import { getLanguage } from "#app/i18n/middleware.server.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
+import { refusal } from "#app/lib/refusal.ts";
+import { mapFiguresOf } from "#app/publish/figures.server.ts";
+import { countiesAddress } from "#app/publish/geometry.server.ts";
+import { choose, readMapQuery } from "#app/publish/map-choice.ts";
+import { pictureOf } from "#app/publish/picture.server.ts";
+import { listCoveredStates, listCrops, listMeasures, listReleases } from "#app/publish/releases.server.ts";
+import { tableRows } from "#app/publish/table-rows.ts";
+import { MapForm } from "./parts/map-form.tsx";
+import { MapTable } from "./parts/map-table.tsx";
+
+export async function loader({ request, context }: Route.LoaderArgs) {
+	const query = readMapQuery(request.url);
+	const releases = await listReleases();
+	const release = query.release ? releases.find(({ number }) => number === query.release) : releases[0];
+	if (!release && query.release) throw refusal("release_not_found");
+	if (!release) return { map: null };
+
+	const measures = await listMeasures(release.releaseId);
+	const measureChoice = choose(
+		query.measure,
+		measures.map(({ key }) => key),
+	);
+	const measure = measures.find(({ key }) => key === measureChoice.key);
+	if (!measure) return { map: null };
+	const crops = await listCrops(release.releaseId, measure.key);
+	const cropChoice = choose(query.crop, crops);
+	const [figures, states] = await Promise.all([
+		mapFiguresOf(release, measure, cropChoice.key ?? "all", query.kind),
+		listCoveredStates(release.releaseId),
+	]);
+	const { compare } = new Intl.Collator(localeOf(getLanguage(context)), { numeric: true });
+	const [picture, outlines] = [pictureOf(states), countiesAddress(states)];
+	if (!figures || !picture || !outlines) return { map: null };
+	const seasons = releases.map(({ number, season, title }) => ({ number, season, title }));
+	return {
+		map: {
+			...figures,
+			query,
+			measures: measures.map(({ key, label }) => ({ key, label })),
+			crops,
+			releases: seasons,
+			changed: measureChoice.changed || cropChoice.changed,
+			picture,
+			outlines,
+			rows: tableRows(figures.cells, query, compare),
+		},
+	};
+}
+
+function withoutArea(url: URL): string {
+	const search = new URLSearchParams(url.search);
+	search.delete("area");
+	return `${url.pathname}?${search}`;
+}
+
+/** Choosing an area changes the address and nothing else; what is shown of it is on the page already. */
+export function shouldRevalidate({ currentUrl, nextUrl, defaultShouldRevalidate }: ShouldRevalidateFunctionArgs) {
+	const areaOnly = currentUrl.search !== nextUrl.search && withoutArea(currentUrl) === withoutArea(nextUrl);
+	return areaOnly ? false : defaultShouldRevalidate;
+}
+
+export default function MapPage({ loaderData: { map } }: Route.ComponentProps) {
+	const { t } = useTranslation("public");
+	if (!map) {
+		return (
+			<Page title={t("map.title")} lead={t("map.lead")}>
+				<EmptyState title={t("empty.title")}>{t("empty.body")}</EmptyState>
+			</Page>
+		);
+	}
+	return <Map key={`${map.release.number} ${map.kind}`} map={map} />;
+}
+
+type MapData = NonNullable<Route.ComponentProps["loaderData"]["map"]>;
+
+function Map({ map }: { map: MapData }) {
+	const { t, i18n } = useTranslation("public");
+	const format = useFormat();
+	const areaName = useAreaName();
+	const navigate = useNavigate();
+	const [search] = useSearchParams();
+	const [pointed, setPointed] = useState<string | null>(null);
+	const { release, measure, cropKey, kind, cells, areaOfCounty } = map;
+	const title = t("map.shown", {
+		measure: wordsIn(measure.label, i18n.language),
+		crop: t(`common:crop.${cropKey}`),
+		season: release.season,
+	});
+	const chosen = search.get("area");
+	const byArea = Object.fromEntries(cells.map((cell) => [cell.areaKey, cell]));
+	const chooseArea = (areaKey: string | null) => {
+		const next = new URLSearchParams(search);
+		if (areaKey) next.set("area", areaKey);
+		else next.delete("area");
+		void navigate(`?${next}`, { replace: true, preventScrollReset: true });
+	};
+	const drawn = { cells, classes: map.classes, areaOfCounty, hue: measure.hue, picture: map.picture };
+	const figuresAddress = `${href("/map/figures/:release/:measure/:crop", { release: `${release.number}`, measure: measure.key, crop: cropKey })}?kind=${kind}`;
+	const withoutCell = Object.values(areaOfCounty).filter((areaKey) => !areaKey || !byArea[areaKey]).length;
+	return (
+		<Page title={title} lead={wordsIn(measure.description, i18n.language)}>
+			<MapForm map={map} chosen={chosen} onChoose={chooseArea} />
+			{map.changed && <Notice tone="info">{t("map.changed", { shown: title })}</Notice>}
+			<div className="grid gap-6 lg:grid-cols-[1fr_17rem]">
+				<CountyMap
+					{...drawn}
+					label={t("map.alternative", { title })}
+					countiesAddress={map.outlines}
+					figuresAddress={figuresAddress}
+					unit={measure.unit}
+					decimals={measure.decimals}
+					chosen={chosen && byArea[chosen] ? chosen : null}
+					pointed={pointed}
+					nameOf={(areaKey) => (byArea[areaKey] ? areaName(byArea[areaKey]) : t("area.unnamed"))}
+					onChoose={chooseArea}
+				/>
+				<div>
+					<Legend
+						title={title}
+						cells={cells}
+						classes={map.classes}
+						notAsked={kind === "county" ? withoutCell : 0}
+						hue={measure.hue}
+						unit={measure.unit}
+						decimals={measure.decimals}
+					/>
+					<p className="mt-4 text-sm text-quiet">{t(`map.counted.${kind}`)}</p>
+					<p className="mt-4 text-sm text-quiet">{t("map.withheldWhy")}</p>
+					<p className="mt-4 text-sm text-quiet">
+						{t("map.source", { number: release.number, date: format.dayOf(release.publishedAt) })}
+					</p>
+				</div>
+			</div>
+			<MapTable map={map} title={title} onPoint={setPointed} />
+		</Page>
+	);
 }

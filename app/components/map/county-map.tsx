@@ -1,0 +1,188 @@
+import { type KeyboardEvent, useEffect, useId, useRef, useState } from "react";
+import { useTranslation } from "react-i18next";
+import { Button } from "#app/components/button.tsx";
+import { classes } from "#app/components/classes.ts";
+import type { Unit } from "#app/lib/format.ts";
+import { useCellWords } from "./cell-words.ts";
+import type { Direction } from "./live-map.client.ts";
+import { StaticMap, type StaticMapProps } from "./static-map.tsx";
+import { useLiveMap } from "./use-live-map.ts";
+
+type CountyMapProps = Omit<StaticMapProps, "selected"> & {
+	countiesAddress: string;
+	figuresAddress: string;
+	unit: Unit;
+	decimals: number;
+	/** The area chosen on this page, by key. */
+	chosen: string | null;
+	/** The area that the reader points at elsewhere on the page, as in the table. */
+	pointed: string | null;
+	nameOf: (areaKey: string) => string;
+	onChoose: (areaKey: string | null) => void;
+};
+const arrows: Record<string, Direction> = { ArrowUp: "up", ArrowDown: "down", ArrowLeft: "left", ArrowRight: "right" };
+
+/** The map of a page: drawn by the server at first, live once it can be; by pointer, finger and keyboard. */
+export function CountyMap(props: CountyMapProps) {
+	const { countiesAddress, figuresAddress, unit, decimals, chosen, pointed, nameOf, onChoose, ...drawn } = props;
+	const { t } = useTranslation("public");
+	const words = useCellWords(unit, decimals);
+	const hintId = useId();
+	const container = useRef<HTMLDivElement>(null);
+	const [hover, setHover] = useState<{ areaKey: string; x: number; y: number } | null>(null);
+	const lastCounty = useRef<string | null>(null);
+	const areaOf = (fips: string | null) => (fips && drawn.areaOfCounty[fips]) || null;
+	const { state, live, retry } = useLiveMap(
+		container,
+		{ countiesAddress, figuresAddress, hue: drawn.hue },
+		{
+			onPoint: (fips, at) => {
+				const areaKey = areaOf(fips);
+				setHover(areaKey && at ? { areaKey, ...at } : null);
+			},
+			onChoose: (fips) => onChoose(areaOf(fips)),
+		},
+	);
+	const marked = hover?.areaKey ?? pointed ?? chosen;
+	useEffect(() => {
+		if (state === "ready") live?.mark(marked);
+	}, [live, state, marked]);
+
+	const sentence = (areaKey: string) =>
+		words(
+			nameOf(areaKey),
+			drawn.cells.find((cell) => cell.areaKey === areaKey),
+		);
+	const onKeyDown = (event: KeyboardEvent) => {
+		const step = keyOf(event);
+		if (!step || !live || event.ctrlKey || event.metaKey || event.altKey) return;
+		event.preventDefault();
+		if (step === "leave") {
+			setHover(null);
+			onChoose(null);
+		} else if (step === "in" || step === "out") live.zoom(step === "in" ? 1 : -1);
+		else {
+			const known = lastCounty.current && areaOf(lastCounty.current) === chosen ? lastCounty.current : null;
+			const start = known ?? Object.keys(drawn.areaOfCounty).find((fips) => chosen && areaOf(fips) === chosen) ?? null;
+			lastCounty.current = walk(start, step, live.next, areaOf);
+			onChoose(areaOf(lastCounty.current));
+		}
+	};
+	const ready = state === "ready";
+	return (
+		<div>
+			<div className="relative h-[min(80vh,44rem)] border border-line bg-paper print:h-auto print:border-0">
+				<div
+					className={classes("map-static h-full", ready && "invisible print:visible")}
+					aria-hidden={ready || undefined}
+				>
+					<StaticMap {...drawn} selected={marked} />
+				</div>
+				{/* A map walked by arrow keys is what the role "application" is for; every figure is in the table too. */}
+				{/* oxlint-disable-next-line jsx-a11y/no-noninteractive-element-interactions */}
+				<div
+					className={classes("map-live no-print absolute inset-0", !ready && "invisible")}
+					role="application"
+					aria-label={drawn.label}
+					aria-roledescription={t("map.live.role")}
+					aria-describedby={hintId}
+					// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex
+					tabIndex={ready ? 0 : -1}
+					onKeyDown={onKeyDown}
+				>
+					<div ref={container} className="size-full" />
+				</div>
+				{ready && hover && <Tooltip x={hover.x} y={hover.y} words={sentence(hover.areaKey)} />}
+				{ready && <ZoomButtons onZoom={(steps) => live?.zoom(steps)} onReset={() => live?.reset()} />}
+			</div>
+			<p id={hintId} className={classes("no-print mt-2 text-sm text-quiet", !ready && "hidden")}>
+				{t("map.live.hint")}
+			</p>
+			<output className="mt-2 block min-h-12 border-l-4 border-quince bg-sheet px-4 py-2.5 font-bold">
+				{chosen ? sentence(chosen) : t("map.said.nothing")}
+			</output>
+			<Trouble state={state} onRetry={retry} />
+		</div>
+	);
+}
+
+/** Steps until another area is reached: a district is several counties wide. */
+function walk(
+	start: string | null,
+	direction: Direction,
+	next: (fips: string | null, direction: Direction) => string | null,
+	areaOf: (fips: string | null) => string | null,
+): string | null {
+	let here = start;
+	for (let steps = 0; steps < 40; steps += 1) {
+		const there = next(here, direction);
+		if (there === here) return here;
+		here = there;
+		if (areaOf(here) !== null && (start === null || areaOf(here) !== areaOf(start))) return here;
+	}
+	return here;
+}
+
+function keyOf(event: KeyboardEvent): Direction | "in" | "out" | "leave" | undefined {
+	if (event.key === "Escape") return "leave";
+	if (event.key === "+" || event.key === "=") return "in";
+	if (event.key === "-") return "out";
+	return arrows[event.key];
+}
+
+function ZoomButtons({ onZoom, onReset }: { onZoom: (steps: number) => void; onReset: () => void }) {
+	const { t } = useTranslation("public");
+	return (
+		<div className="no-print absolute right-3 top-3 grid gap-2">
+			<Button type="button" kind="secondary" aria-label={t("map.live.zoomIn")} onClick={() => onZoom(1)}>
+				+
+			</Button>
+			<Button type="button" kind="secondary" aria-label={t("map.live.zoomOut")} onClick={() => onZoom(-1)}>
+				−
+			</Button>
+			<Button type="button" kind="secondary" aria-label={t("map.live.reset")} onClick={onReset}>
+				⤢
+			</Button>
+		</div>
+	);
+}
+
+/** Beside the pointer and never under it. The same words stand in the table, so a screen reader need not hear them twice. */
+function Tooltip({ x, y, words }: { x: number; y: number; words: string }) {
+	const box = useRef<HTMLDivElement>(null);
+	useEffect(() => {
+		const element = box.current;
+		const frame = element?.parentElement;
+		if (!element || !frame) return;
+		const left = x + 16 + element.offsetWidth > frame.clientWidth ? Math.max(0, x - 16 - element.offsetWidth) : x + 16;
+		const top = Math.max(0, Math.min(y + 12, frame.clientHeight - element.offsetHeight));
+		element.style.transform = `translate(${left}px, ${top}px)`;
+	}, [x, y]);
+	return (
+		<div
+			ref={box}
+			aria-hidden="true"
+			className="no-print pointer-events-none absolute left-0 top-0 w-max max-w-64 border border-line bg-paper px-3 py-2 text-sm shadow-[3px_3px_0_var(--color-rule)]"
+		>
+			{words}
+		</div>
+	);
+}
+
+function Trouble({ state, onRetry }: { state: string; onRetry: () => void }) {
+	const { t } = useTranslation("public");
+	if (state !== "no_figures" && state !== "no_map") return null;
+	return (
+		<div
+			role="alert"
+			className="no-print mt-3 flex flex-wrap items-center gap-4 border-l-4 border-quince bg-quince-wash p-4"
+		>
+			<p className="max-w-prose">{t(state === "no_figures" ? "map.live.noFigures" : "map.live.noMap")}</p>
+			{state === "no_figures" && (
+				<Button type="button" kind="secondary" onClick={onRetry}>
+					{t("map.live.retry")}
+				</Button>
+			)}
+		</div>
+	);
+}

@@ -1,0 +1,153 @@
+import { useTranslation } from "react-i18next";
+import { type Column, DataTable } from "#app/components/data-table.tsx";
+import { Figure } from "#app/components/figure.tsx";
+import { useAreaName } from "#app/components/map/area-name.ts";
+import { bandText } from "#app/components/map/cell-words.ts";
+import { Legend } from "#app/components/map/legend.tsx";
+import { type DrawnPicture, StaticMap } from "#app/components/map/static-map.tsx";
+import { Notice } from "#app/components/notice.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import { CropTable } from "./crop-table.tsx";
+import type { ToldBlock, ToldCell, ToldMeasure } from "./report-data.ts";
+import { ToldText, useToldText } from "./told-words.tsx";
+
+type ReportBlocksProps = { blocks: ToldBlock[]; season: number; picture: DrawnPicture | null };
+
+/** The blocks of a report in their order. */
+export function ReportBlocks({ blocks, season, picture }: ReportBlocksProps) {
+	const { t } = useTranslation("public");
+	const toldText = useToldText();
+	return blocks.map((block) => {
+		switch (block.type) {
+			case "heading":
+				return (
+					<h2 key={block.id} className="mb-3 mt-10 border-t border-line pt-3 text-xl">
+						{toldText(block.text)}
+					</h2>
+				);
+			case "text":
+				return <ToldText key={block.id} told={block.text} />;
+			case "figure":
+				return <FigureBlock key={block.id} block={block} season={season} />;
+			case "map":
+				return <MapBlock key={block.id} block={block} season={season} picture={picture} />;
+			case "table":
+				return <TableBlock key={block.id} block={block} season={season} />;
+			case "crops":
+				return <CropsBlock key={block.id} block={block} season={season} />;
+			case "caution":
+				return (
+					<Notice key={block.id} tone="caution" title={t(`caution.${block.key}.title`)}>
+						{t(`caution.${block.key}.body`)}
+					</Notice>
+				);
+			case "missing":
+				return (
+					<p key={block.id} className="my-4 text-quiet">
+						{t("report.noFigure")}
+					</p>
+				);
+		}
+	});
+}
+
+type Of<T extends ToldBlock["type"]> = { block: Extract<ToldBlock, { type: T }>; season: number };
+
+function useTitle() {
+	const { t, i18n } = useTranslation("public");
+	return (measure: ToldMeasure, cropKey: string, season: number) =>
+		t("map.shown", { measure: wordsIn(measure.label, i18n.language), crop: t(`common:crop.${cropKey}`), season });
+}
+
+function FigureBlock({ block: { figure }, season }: Of<"figure">) {
+	const { t } = useTranslation("public");
+	const title = useTitle();
+	const areaName = useAreaName();
+	if (!figure) return <p className="my-4 text-quiet">{t("report.noFigure")}</p>;
+	const { measure, cell } = figure;
+	return (
+		<div className="my-6 break-inside-avoid border-y-2 border-line py-5">
+			<Figure {...cell} status={toldStatus(cell)} unit={measure.unit} decimals={measure.decimals} size="headline" />
+			<p className="mt-3">
+				{t("report.figureOf", { title: title(measure, cell.cropKey, season), area: areaName(cell) })}
+				{cell.respondentsBand && ` ${t("map.said.bandAlone", { band: bandText(cell.respondentsBand) })}`}
+			</p>
+		</div>
+	);
+}
+
+function MapBlock({ block, season, picture }: Of<"map"> & { picture: DrawnPicture | null }) {
+	const { t } = useTranslation("public");
+	const title = useTitle()(block.measure, block.cropKey, season);
+	if (!picture) return null;
+	const { cells, classes, areaOfCounty, measure } = block;
+	return (
+		<figure className="my-6 grid gap-4 sm:grid-cols-[1fr_15rem]">
+			<StaticMap
+				picture={picture}
+				cells={cells}
+				classes={classes}
+				areaOfCounty={areaOfCounty}
+				hue={measure.hue}
+				label={t("map.alternative", { title })}
+			/>
+			<figcaption>
+				<Legend
+					title={title}
+					cells={cells}
+					classes={classes}
+					notAsked={Object.keys(areaOfCounty).length - cells.length}
+					hue={measure.hue}
+					unit={measure.unit}
+					decimals={measure.decimals}
+				/>
+				<p className="mt-3 text-sm text-quiet">{t("map.withheldWhy")}</p>
+			</figcaption>
+		</figure>
+	);
+}
+
+function TableBlock({ block: { measure, cropKey, kind, cells }, season }: Of<"table">) {
+	const title = useTitle()(measure, cropKey, season);
+	const columns = useAreaColumns(measure, kind);
+	return (
+		<div className="my-6">
+			<DataTable caption={title} columns={columns} rows={cells} rowKey={(row) => row.areaKey} />
+		</div>
+	);
+}
+
+function useAreaColumns(measure: ToldMeasure, kind: string): Column<ToldCell>[] {
+	const { t } = useTranslation("public");
+	const areaName = useAreaName();
+	return [
+		{ key: "area", header: t(`common:areaKind.${kind}`), cell: areaName },
+		{
+			key: "value",
+			header: t("map.table.value"),
+			cell: (row) => <Figure {...row} status={toldStatus(row)} unit={measure.unit} decimals={measure.decimals} />,
+		},
+		{
+			key: "band",
+			header: t("map.table.band"),
+			numeric: true,
+			cell: (row) => (row.respondentsBand ? bandText(row.respondentsBand) : ""),
+		},
+	];
+}
+
+function CropsBlock({ block: { measure, areaName, cells }, season }: Of<"crops">) {
+	const { t, i18n } = useTranslation("public");
+	const caption = t("report.cropsOf", { measure: wordsIn(measure.label, i18n.language), area: areaName, season });
+	return (
+		<div className="my-6">
+			<p className="mb-2 font-bold">{caption}</p>
+			<CropTable caption={caption} rows={cells} unit={measure.unit} decimals={measure.decimals} />
+		</div>
+	);
+}
+
+/** A shown cell without this measure's figure was not asked for it. */
+function toldStatus(cell: ToldCell) {
+	return cell.status === "shown" && cell.steadiness === null ? null : cell.status;
+}

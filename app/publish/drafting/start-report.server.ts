@@ -1,0 +1,66 @@
+import type { Kysely } from "kysely";
+import type { Trx } from "#app/auth/scope.server.ts";
+import { logEvent } from "#app/auth/event-log.server.ts";
+import { countCells, listCells, listCropCells } from "../cells.server.ts";
+import { leadingMeasure, worstFirst } from "../finding.ts";
+import type { ReaderDB } from "../reader.server.ts";
+import { findReleaseById, listMeasures } from "../releases.server.ts";
+import { slugOf } from "../report.ts";
+import { draftReport, type Say } from "./draft-report.ts";
+
+export type Author = { personId: string; displayName: string };
+
+/**
+ * Starts a report on a release with a first draft made from it, in the caller's transaction. The release is read through
+ * that transaction, so that one published in it can be written about at once.
+ * @returns the new report's id, or undefined where there is no such release or it has no measure.
+ */
+export async function startReport(
+	trx: Trx,
+	author: Author,
+	releaseId: string,
+	say: { en: Say; es: Say },
+): Promise<string | undefined> {
+	// Only the released tables are read here; the type says so.
+	const released = trx as unknown as Kysely<ReaderDB>;
+	const release = await findReleaseById(releaseId, released);
+	const measures = release ? await listMeasures(releaseId, released) : [];
+	const measure = leadingMeasure(measures);
+	if (!release || !measure) return undefined;
+
+	const crops = await listCropCells(releaseId, measure.key, "network", released);
+	const worst = worstFirst(measure, crops)[0];
+	const districts = worst ? await listCells(releaseId, measure.key, worst.cropKey, "district", released) : [];
+	const counties = await countCells(releaseId, "county", released);
+	const content = draftReport({ release, measures, measure, crops, districts, counties, say });
+	const slug = await freeSlug(trx, slugOf(content.title.en));
+	const { report_id } = await trx
+		.insertInto("publish.report")
+		.values({
+			slug,
+			release_id: releaseId,
+			content: JSON.stringify(content),
+			created_by: author.personId,
+			author_name: author.displayName,
+		})
+		.returning("report_id")
+		.executeTakeFirstOrThrow();
+	await logEvent(trx, {
+		personId: author.personId,
+		action: "report.started",
+		subjectKind: "report",
+		subjectId: report_id,
+		detail: { release: release.number },
+	});
+	return report_id;
+}
+
+/** The address, with the first number that makes it one of its own. */
+async function freeSlug(trx: Trx, slug: string): Promise<string> {
+	const rows = await trx.selectFrom("publish.report").select("slug").where("slug", "like", `${slug}%`).execute();
+	const taken = new Set(rows.map((row) => row.slug));
+	if (!taken.has(slug)) return slug;
+	let number = 2;
+	while (taken.has(`${slug}-${number}`)) number += 1;
+	return `${slug}-${number}`;
+}

@@ -1,0 +1,34 @@
+import { type CropCell, lookOf } from "./cell.ts";
+import type { ReleaseMeasure } from "./release.ts";
+
+/** What a season's figures say first: the measure that leads the release, and the crop for which it is worst. */
+export type Finding = { measure: ReleaseMeasure; cell: CropCell & { value: number } };
+
+/** The measure that leads: the first of which one direction is bad news, else the first at all. */
+export function leadingMeasure(measures: ReleaseMeasure[]): ReleaseMeasure | undefined {
+	return measures.find((measure) => measure.worse !== null) ?? measures[0];
+}
+
+/** The crops with a number, worst first; "all" is no crop and stays out. */
+export function worstFirst(measure: ReleaseMeasure, cells: CropCell[]): Finding["cell"][] {
+	const turn = measure.worse === "less" ? -1 : 1;
+	return cells
+		.filter(
+			(cell): cell is Finding["cell"] => cell.cropKey !== "all" && lookOf(cell) === "number" && cell.value !== null,
+		)
+		.toSorted((a, b) => turn * (b.value - a.value) || a.cropKey.localeCompare(b.cropKey));
+}
+
+export function findingOf(measure: ReleaseMeasure | undefined, cells: CropCell[]): Finding | null {
+	const worst = measure && worstFirst(measure, cells)[0];
+	return worst ? { measure, cell: worst } : null;
+}
+
+/** The crops in a table's order: all crops together last, what has no number after what has. */
+export function cropRows(measure: ReleaseMeasure, cells: CropCell[]): CropCell[] {
+	const numbered = worstFirst(measure, cells);
+	const named = new Set(numbered.map((cell) => cell.cropKey));
+	const rest = cells.filter((cell) => !named.has(cell.cropKey) && cell.cropKey !== "all");
+	const all = cells.filter((cell) => cell.cropKey === "all" && lookOf(cell) !== "no_figure");
+	return [...numbered, ...rest.toSorted((a, b) => a.cropKey.localeCompare(b.cropKey)), ...all];
+}

@@ -1,0 +1,26 @@
+import { z } from "zod";
+
+const text = z.string().trim().max(100).optional().catch(undefined);
+
+/** What the map's address may say. A word that means nothing is as if it were absent; what is shown is said on the page. */
+export const MapQuery = z.object({
+	release: z.coerce.number().int().positive().max(2_147_483_647).optional().catch(undefined),
+	measure: text,
+	crop: text,
+	kind: z.enum(["county", "district"]).catch("county"),
+	area: text,
+	q: z.string().trim().max(200).catch(""),
+	sort: z.enum(["area", "value"]).catch("area"),
+	direction: z.enum(["asc", "desc"]).catch("asc"),
+});
+export type MapQuery = z.infer<typeof MapQuery>;
+
+export function readMapQuery(url: string): MapQuery {
+	return MapQuery.parse(Object.fromEntries(new URL(url).searchParams));
+}
+
+/** The wanted key if it is on offer, else the first on offer; `changed` says that something else was wanted. */
+export function choose(wanted: string | undefined, offered: string[]): { key: string | undefined; changed: boolean } {
+	if (wanted !== undefined && offered.includes(wanted)) return { key: wanted, changed: false };
+	return { key: offered[0], changed: wanted !== undefined };
+}

@@ -1,0 +1,124 @@
+import { z } from "zod";
+
+/** A text in both languages as it stands in a draft: either may still be empty. */
+const DraftWords = z.object({ en: z.string().default(""), es: z.string().default("") });
+export type DraftWords = z.infer<typeof DraftWords>;
+
+const id = z.string().regex(/^[a-z0-9]{1,24}$/);
+const measure = z.string().regex(/^[a-z][a-z0-9_.]{0,79}$/);
+const crop = z.string().regex(/^[a-z_]{1,40}$/);
+const area = z.string().regex(/^[A-Za-z0-9_-]{1,40}$/);
+
+export const cautionKeys = ["damaged_fruit", "pesticide", "frost_protection", "station_air", "local_advice"] as const;
+export type CautionKey = (typeof cautionKeys)[number];
+export const tableKinds = ["county", "district", "state"] as const;
+
+/** The blocks of a report. None holds a typed figure: numbers are addresses into the report's release. */
+export const Block = z.discriminatedUnion("type", [
+	z.object({ id, type: z.literal("heading"), text: DraftWords }),
+	z.object({ id, type: z.literal("text"), text: DraftWords }),
+	z.object({ id, type: z.literal("figure"), measure, crop, area }),
+	z.object({ id, type: z.literal("map"), measure, crop }),
+	z.object({ id, type: z.literal("table"), measure, crop, kind: z.enum(tableKinds) }),
+	z.object({ id, type: z.literal("crops"), measure, area }),
+	z.object({ id, type: z.literal("caution"), key: z.enum(cautionKeys) }),
+]);
+export type Block = z.infer<typeof Block>;
+export type BlockType = Block["type"];
+export const blockTypes = [
+	"heading",
+	"text",
+	"figure",
+	"map",
+	"table",
+	"crops",
+	"caution",
+] as const satisfies BlockType[];
+
+export const ReportContent = z.object({
+	title: DraftWords,
+	summary: DraftWords,
+	blocks: z.array(Block).max(60).default([]),
+});
+export type ReportContent = z.infer<typeof ReportContent>;
+
+export type Reference = { measure: string; crop: string; area: string };
+export type TextPart = { kind: "text"; text: string } | { kind: "reference"; reference: Reference };
+
+const referencePattern = /\[\[([a-z][a-z0-9_.]{0,79})\|([a-z_]{1,40})\|([A-Za-z0-9_-]{1,40})\]\]/g;
+
+/** A text with its references taken apart: `[[crop_loss|apple|network]]` stands for that figure of the release. */
+export function partsOf(text: string): TextPart[] {
+	const parts: TextPart[] = [];
+	let end = 0;
+	for (const match of text.matchAll(referencePattern)) {
+		if (match.index > end) parts.push({ kind: "text", text: text.slice(end, match.index) });
+		parts.push({
+			kind: "reference",
+			reference: { measure: match[1] ?? "", crop: match[2] ?? "", area: match[3] ?? "" },
+		});
+		end = match.index + match[0].length;
+	}
+	if (end < text.length) parts.push({ kind: "text", text: text.slice(end) });
+	return parts;
+}
+
+export const referenceText = ({ measure: m, crop: c, area: a }: Reference) => `[[${m}|${c}|${a}]]`;
+
+const typedFigure =
+	/\d[\d.,]*\s*(?:%|percent|per cent|por ciento|lbs?\b|pounds?\b|libras?\b|tons?\b|toneladas?\b|bushels?\b|bu\b|kg\b|acres?\b|trees?\b|árbol(?:es)?\b)/giu;
+
+/** Figures typed by hand, which would not follow a revision of the release: "38%", "1,200 lb". */
+export function typedFigures(text: string): string[] {
+	return [...text.replace(referencePattern, " ").matchAll(typedFigure)].map(([found]) => found);
+}
+
+const inWords = ({ en, es }: DraftWords) =>
+	[en, es].flatMap((text) => partsOf(text).flatMap((part) => (part.kind === "reference" ? [part.reference] : [])));
+
+/** Every figure that a report points to, in titles, texts and figure blocks. */
+export function referencesOf({ title, summary, blocks }: ReportContent): Reference[] {
+	const inBlocks = blocks.flatMap((block) => {
+		if (block.type === "text" || block.type === "heading") return inWords(block.text);
+		if (block.type === "figure") return [{ measure: block.measure, crop: block.crop, area: block.area }];
+		return [];
+	});
+	return [...inWords(title), ...inWords(summary), ...inBlocks];
+}
+
+/** Every text of a report with the name of its field in the editor's form. */
+function textsOf({ title, summary, blocks }: ReportContent): [field: string, text: string][] {
+	const words: [string, DraftWords][] = [
+		["title", title],
+		["summary", summary],
+		...blocks.flatMap((block, index): [string, DraftWords][] =>
+			"text" in block ? [[`blocks[${index}].text`, block.text]] : [],
+		),
+	];
+	return words.flatMap(([name, { en, es }]): [string, string][] => [
+		[`${name}.en`, en],
+		[`${name}.es`, es],
+	]);
+}
+
+/** What keeps a report from being submitted: texts missing in a language, and no block at all. */
+export function missingWords(content: ReportContent): { field: string; code: "empty" }[] {
+	const missing = textsOf(content).flatMap(([field, text]) => (text.trim() ? [] : [field]));
+	if (content.blocks.length === 0) missing.push("blocks");
+	return missing.map((field) => ({ field, code: "empty" }));
+}
+
+const longestText = 8_000;
+
+/** Texts longer than a report's page can take; they come back to the editor whole, to be shortened there. */
+export function tooLongWords(content: ReportContent): { field: string; code: "too_long" }[] {
+	const long = textsOf(content).filter(([, text]) => text.length > longestText);
+	return long.map(([field]) => ({ field, code: "too_long" }));
+}
+
+/** A report's address from its title: "After harvest, 2025" becomes "after-harvest-2025". */
+export function slugOf(title: string): string {
+	const plain = title.normalize("NFD").replace(/\p{M}/gu, "").toLowerCase();
+	const words = plain.split(/[^a-z0-9]+/).filter(Boolean);
+	return words.join("-").slice(0, 80).replace(/-+$/, "") || "report";
+}

@@ -1,0 +1,17 @@
+import { type Cell, orderCells } from "./cell.ts";
+
+/** The rows of a table of areas: those whose name holds the searched text, in the order asked for. */
+export function tableRows<C extends Cell>(
+	cells: C[],
+	{ q, sort, direction }: { q: string; sort: "area" | "value"; direction: "asc" | "desc" },
+	compare: (a: string, b: string) => number,
+): C[] {
+	const wanted = plain(q);
+	const found = cells.filter((cell) => plain(cell.areaName).includes(wanted));
+	return orderCells(found, { key: sort, direction }, compare);
+}
+
+/** Without accents and capitals, so that a search on a plain keyboard finds "Peña". */
+function plain(text: string): string {
+	return text.normalize("NFD").replace(/\p{M}/gu, "").toLowerCase();
+}

@@ -1,0 +1,96 @@
+import { useTranslation } from "react-i18next";
+import { AreaPicker } from "#app/components/area-picker.tsx";
+import { ChoiceField } from "#app/components/choice-field.tsx";
+import { TextField } from "#app/components/text-field.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import type { Problem } from "#app/lib/parse-form.ts";
+import type { ReleaseArea, ReleaseMeasure } from "#app/publish/release.ts";
+import type { DraftWords, ReportContent } from "#app/publish/report.ts";
+
+/** What a release holds to point to. */
+export type Offered = { measures: Pick<ReleaseMeasure, "key" | "label">[]; crops: string[]; areas: ReleaseArea[] };
+
+type TextPairProps = { name: string; label: string; value: DraftWords; problems?: Problem[]; rows?: number };
+
+/** One text in both languages, side by side where there is room. */
+export function TextPair({ name, label, value, problems, rows }: TextPairProps) {
+	const { t } = useTranslation("public");
+	return (
+		<div className="grid gap-x-6 lg:grid-cols-2">
+			{(["en", "es"] as const).map((language) => {
+				const field = `${name}.${language}`;
+				return (
+					<div key={language} lang={language}>
+						<TextField
+							name={field}
+							label={t("report_editor.inLanguage", { label, language: t(`common:language.${language}`) })}
+							defaultValue={value[language]}
+							multiline={rows !== undefined}
+							rows={rows}
+							size="full"
+							problem={problems?.find((problem) => problem.field === field)}
+						/>
+					</div>
+				);
+			})}
+		</div>
+	);
+}
+
+export function MeasureField({ name, offered, value }: { name: string; offered: Offered; value?: string }) {
+	const { t, i18n } = useTranslation("public");
+	const options = offered.measures.map(({ key, label }) => ({ value: key, label: wordsIn(label, i18n.language) }));
+	return (
+		<ChoiceField kind="select" name={name} legend={t("map.form.measure")} options={options} defaultValue={value} />
+	);
+}
+
+export function CropField({ name, offered, value }: { name: string; offered: Offered; value?: string }) {
+	const { t } = useTranslation("public");
+	const options = offered.crops.map((crop) => ({ value: crop, label: t(`common:crop.${crop}`) }));
+	return <ChoiceField kind="select" name={name} legend={t("map.form.crop")} options={options} defaultValue={value} />;
+}
+
+export function AreaField({ name, offered, value }: { name: string; offered: Offered; value?: string }) {
+	const { t } = useTranslation("public");
+	return (
+		<AreaPicker areas={offered.areas} name={name} label={t("report_editor.area")} defaultValue={value ?? "network"} />
+	);
+}
+
+/** Chooses the figure that a text's "insert" button puts into it. */
+export function PlacePicker({ offered }: { offered: Offered }) {
+	const { t } = useTranslation("public");
+	return (
+		<fieldset className="mb-4 border border-rule bg-sheet px-4 pt-3">
+			<legend className="px-1 font-bold">{t("report_editor.pick.title")}</legend>
+			<p className="mb-3 max-w-prose text-sm text-quiet">{t("report_editor.pick.help")}</p>
+			<div className="flex flex-wrap gap-x-4">
+				<MeasureField name="pick.measure" offered={offered} />
+				<CropField name="pick.crop" offered={offered} />
+				<AreaField name="pick.area" offered={offered} />
+			</div>
+		</fieldset>
+	);
+}
+
+/** Every field's name in words, for the summary of what is to be mended. */
+export function useFieldLabels(content: ReportContent): Record<string, string> {
+	const { t } = useTranslation("public");
+	const texts: [string, string][] = [
+		["title", t("report_editor.title")],
+		["summary", t("report_editor.summary")],
+		["blocks", t("report_editor.blocks")],
+		...content.blocks.map(({ type }, index): [string, string] => [
+			`blocks[${index}].text`,
+			t("report_editor.blockNamed", { number: index + 1, type: t(`report_editor.types.${type}`) }),
+		]),
+	];
+	const inLanguages = texts.flatMap(([name, label]) =>
+		(["en", "es"] as const).map((language): [string, string] => [
+			`${name}.${language}`,
+			t("report_editor.inLanguage", { label, language: t(`common:language.${language}`) }),
+		]),
+	);
+	return Object.fromEntries([...texts, ...inLanguages]);
+}

@@ -1,0 +1,20 @@
+import { useTranslation } from "react-i18next";
+import { ReportBlocks } from "#app/components/report/report-blocks.tsx";
+import type { ToldReport } from "#app/components/report/report-data.ts";
+import { ToldText, useToldText } from "#app/components/report/told-words.tsx";
+
+/** A report as its readers will see it, marked as not published. */
+export function ReportPreview({ told, published = false }: { told: ToldReport; published?: boolean }) {
+	const { t } = useTranslation("public");
+	const toldText = useToldText();
+	return (
+		<article className="max-w-4xl border border-line p-5 sm:p-8">
+			{!published && <p className="mb-4 text-sm font-bold text-attention">{t("report_editor.notPublished")}</p>}
+			<p className="text-2xl font-bold">{toldText(told.title)}</p>
+			<div className="mt-3 text-lg text-quiet">
+				<ToldText told={told.summary} />
+			</div>
+			<ReportBlocks blocks={told.blocks} season={told.season} picture={told.picture} />
+		</article>
+	);
+}

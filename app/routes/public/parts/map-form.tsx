@@ -1,0 +1,98 @@
+import { useTranslation } from "react-i18next";
+import { Form } from "react-router";
+import { Button } from "#app/components/button.tsx";
+import { inputClasses } from "#app/components/field-frame.tsx";
+import { useAreaName } from "#app/components/map/area-name.ts";
+import { wordsIn } from "#app/i18n/language.ts";
+import type { MapCell } from "#app/publish/cell.ts";
+import type { Words } from "#app/lib/words.ts";
+
+export type MapFormData = {
+	release: { number: number };
+	measure: { key: string };
+	cropKey: string;
+	kind: string;
+	cells: MapCell[];
+	measures: { key: string; label: Words }[];
+	crops: string[];
+	releases: { number: number; season: number; title: Words }[];
+};
+type MapFormProps = { map: MapFormData; chosen: string | null; onChoose: (areaKey: string | null) => void };
+
+/** Every choice of the map in one form sent by GET, so that its address reproduces the view. */
+export function MapForm({ map, chosen, onChoose }: MapFormProps) {
+	const { t, i18n } = useTranslation("public");
+	const areaName = useAreaName();
+	const key = `${map.release.number} ${map.measure.key} ${map.cropKey} ${map.kind}`;
+	const measures = map.measures.map(({ key: value, label }) => ({ value, label: wordsIn(label, i18n.language) }));
+	const releases = map.releases.map(({ number, season, title }) => ({
+		value: `${number}`,
+		label: t("map.form.release", { season, title: wordsIn(title, i18n.language), number }),
+	}));
+	const areas = map.cells
+		.map((cell) => ({ value: cell.areaKey, label: areaName(cell) }))
+		.toSorted((a, b) => a.label.localeCompare(b.label, i18n.language));
+	return (
+		<Form
+			key={key}
+			method="get"
+			preventScrollReset
+			className="mb-6 flex flex-wrap items-end gap-3 border-y border-rule py-4"
+		>
+			<Choice name="measure" label={t("map.form.measure")} value={map.measure.key} options={measures} />
+			<Choice
+				name="crop"
+				label={t("map.form.crop")}
+				value={map.cropKey}
+				options={map.crops.map((crop) => ({ value: crop, label: t(`common:crop.${crop}`) }))}
+			/>
+			<Choice name="release" label={t("map.form.season")} value={`${map.release.number}`} options={releases} />
+			<Choice
+				name="kind"
+				label={t("map.form.kind")}
+				value={map.kind}
+				options={["county", "district"].map((kind) => ({ value: kind, label: t(`common:areaKind.plural.${kind}`) }))}
+			/>
+			<Choice
+				key={chosen}
+				name="area"
+				label={t(`map.form.area.${map.kind}`)}
+				value={chosen ?? ""}
+				options={[{ value: "", label: t("map.form.noArea") }, ...areas]}
+				onChange={(value) => onChoose(value || null)}
+			/>
+			<Button>{t("map.form.show")}</Button>
+		</Form>
+	);
+}
+
+type ChoiceProps = {
+	name: string;
+	label: string;
+	value: string;
+	options: { value: string; label: string }[];
+	onChange?: (value: string) => void;
+};
+
+function Choice({ name, label, value, options, onChange }: ChoiceProps) {
+	return (
+		<div className="max-w-full">
+			<label htmlFor={`field-${name}`} className="block text-sm font-bold">
+				{label}
+			</label>
+			<select
+				id={`field-${name}`}
+				name={name}
+				defaultValue={value}
+				onChange={onChange && ((event) => onChange(event.target.value))}
+				className={`${inputClasses()} mt-1 max-w-72`}
+			>
+				{options.map((option) => (
+					<option key={option.value} value={option.value}>
+						{option.label}
+					</option>
+				))}
+			</select>
+		</div>
+	);
+}
