@@ -1,5 +1,7 @@
-import "@fontsource/noto-sans/400.css";
-import "@fontsource/noto-sans/700.css";
+import "@fontsource/noto-sans/latin-400.css";
+import "@fontsource/noto-sans/latin-700.css";
+import "@fontsource/noto-sans/latin-ext-400.css";
+import "@fontsource/noto-sans/latin-ext-700.css";
 import "./app.css";
 import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
@@ -7,13 +9,21 @@ import { Links, Meta, Outlet, Scripts, ScrollRestoration } from "react-router";
 import type { Route } from "./+types/root";
 import { sessionContext, sessionMiddleware } from "#app/auth/session.server.ts";
 import { visitorContext, visitorMiddleware } from "#app/auth/visitor.server.ts";
-import { getLanguage, i18nextMiddleware } from "#app/i18n/middleware.server.ts";
+import { RefusalPage } from "#app/components/refusal-page.tsx";
+import { type ShellData, useDemo } from "#app/components/shell-data.ts";
+import { Shell } from "#app/components/shell.tsx";
+import { getInstance, getLanguage, i18nextMiddleware } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { securityHeaders } from "#app/lib/security-headers.server.ts";
 
 export const middleware: Route.MiddlewareFunction[] = [
 	securityHeaders,
 	i18nextMiddleware,
+	// A guard refuses before any loader runs, and that page too must say that it is a demonstration.
+	({ context }, next) => {
+		Object.assign(getInstance(context).options, { demo: env().DEMO });
+		return next();
+	},
 	sessionMiddleware,
 	visitorMiddleware,
 ];
@@ -34,20 +44,26 @@ export function loader({ context }: Route.LoaderArgs) {
 				dataroom: true,
 			},
 		},
-	};
+	} satisfies ShellData;
 }
+
+export const links: Route.LinksFunction = () => [{ rel: "icon", href: "/favicon.svg", type: "image/svg+xml" }];
 
 export function Layout({ children }: { children: ReactNode }) {
 	const { i18n } = useTranslation();
+	const demo = useDemo();
 	return (
-		<html lang={i18n.language}>
+		<html lang={i18n.language} dir={i18n.dir()} data-demo={demo ? "yes" : undefined}>
 			<head>
 				<meta charSet="utf-8" />
 				<meta name="viewport" content="width=device-width, initial-scale=1" />
+				<meta name="color-scheme" content="light dark" />
+				<meta name="theme-color" content="#ffffff" media="(prefers-color-scheme: light)" />
+				<meta name="theme-color" content="#141b18" media="(prefers-color-scheme: dark)" />
 				<Meta />
 				<Links />
 			</head>
-			<body>
+			<body className="ruled">
 				{children}
 				<ScrollRestoration />
 				<Scripts />
@@ -58,4 +74,13 @@ export function Layout({ children }: { children: ReactNode }) {
 
 export default function App() {
 	return <Outlet />;
+}
+
+/** For whatever a layout does not catch, guards' refusals among it: these come before any loader has run. */
+export function ErrorBoundary({ error }: Route.ErrorBoundaryProps) {
+	return (
+		<Shell>
+			<RefusalPage error={error} />
+		</Shell>
+	);
 }

@@ -15,6 +15,7 @@ export default [
 		route("data/:release", "routes/public/data-release.tsx"),
 
 		route("sign-in", "routes/public/sign-in.tsx"),
+		route("sign-out", "routes/public/sign-out.tsx"),
 		route("me", "routes/public/me.tsx"),
 
 		...prefix("dataroom", [
@@ -31,7 +32,6 @@ export default [
 
 	route("sign-in/start", "routes/public/sign-in-start.ts"),
 	route("sign-in/callback", "routes/public/sign-in-callback.ts"),
-	route("sign-out", "routes/public/sign-out.ts"),
 
 	// Growers: one column, nothing but the question.
 	layout("routes/grower/layout.tsx", [

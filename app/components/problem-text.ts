@@ -14,8 +14,13 @@ export function useProblemText() {
 			typeof value === "number" ? format.number(value, decimalsOf(value)) : value,
 		]);
 		const context = detail.some(([key]) => key === "min" || key === "max" || key === "total") ? "limit" : undefined;
-		const values = { ...Object.fromEntries(detail), label: lowerFirst(noun), Label: upperFirst(noun), context };
-		return t([`problem.${problem.code}`, "problem.wrong"], values);
+		const values: Record<string, string | undefined> = {
+			...Object.fromEntries(detail),
+			label: lowerFirst(noun),
+			Label: upperFirst(noun),
+			context,
+		};
+		return String(t([`problem.${problem.code}`, "problem.wrong"], values));
 	};
 }
 
