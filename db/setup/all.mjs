@@ -1,7 +1,7 @@
 // The whole start: settings, packages, database, build, services.
 import { people } from "../../fakes/sign-in/people.mjs";
 import { ensureBuild } from "./build.mjs";
-import { followIssuer, migrate, preparePrivateDatabase, seed } from "./database.mjs";
+import { bringUpToDate, followIssuer, migrate, preparePrivateDatabase } from "./database.mjs";
 import { atEnd } from "./end.mjs";
 import { readCaller, serviceEnvironment } from "./environment.mjs";
 import { ensurePackages } from "./packages.mjs";
@@ -26,13 +26,15 @@ async function beginAlone(caller) {
 async function prepareDatabase(caller) {
 	const database = caller.privateDatabase ? await preparePrivateDatabase() : undefined;
 	const environment = await serviceEnvironment(caller, database?.addresses);
-	await migrate(environment);
-	if (database && caller.fakeSignIn) await followIssuer(database.cluster, environment.OAUTH_ISSUER);
-	if (database) await seed(environment);
+	if (!database) await migrate(environment);
+	else {
+		await bringUpToDate(database.cluster, environment);
+		if (caller.fakeSignIn) await followIssuer(database.cluster, environment.OAUTH_ISSUER);
+	}
 	return environment;
 }
 
-async function startFakes(caller, env) {
+function startFakes(caller, env) {
 	const started = [];
 	if (caller.fakeSignIn) {
 		const service = startService("demo sign-in", withTypes("fakes/sign-in/server.ts"), env);
@@ -42,8 +44,7 @@ async function startFakes(caller, env) {
 		const service = startService("demo mail", withTypes("fakes/mail/server.ts"), env);
 		started.push(waitFor(service, `${env.INBOX_URL}/healthz`));
 	}
-	await Promise.all(started);
-	return started.length ? undefined : "none, the services are given";
+	return started;
 }
 
 async function startProduct(caller, env, dev) {
@@ -85,7 +86,9 @@ export async function startAll({ dev }) {
 	await step("npm packages", ensurePackages);
 	const env = await prepareDatabase(caller);
 	if (!dev) await step("Production build", ensureBuild);
-	await step("Stand-ins for sign-in and mail", () => startFakes(caller, env));
-	await step("Job worker and server", () => startProduct(caller, env, dev));
+	await step("Services", async () => {
+		const fakes = startFakes(caller, env);
+		await Promise.all([...fakes, startProduct(caller, env, dev)]);
+	});
 	welcome(caller, env, since);
 }

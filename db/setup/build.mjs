@@ -18,9 +18,10 @@ function listFiles(path) {
 		.flatMap((name) => listFiles(join(path, name)));
 }
 
-function sourceHash() {
+/** One hash over all files in these folders and files. */
+export function hashFiles(paths) {
 	const hash = createHash("sha256");
-	for (const file of [...folders, ...files].flatMap((part) => listFiles(join(root, part)))) {
+	for (const file of paths.flatMap((path) => listFiles(join(root, path)))) {
 		hash.update(`${relative(root, file)}\0`).update(createHash("sha256").update(readFileSync(file)).digest());
 	}
 	return hash.digest("hex");
@@ -28,7 +29,7 @@ function sourceHash() {
 
 export async function ensureBuild() {
 	const stamp = join(root, "build/.stamp");
-	const hash = sourceHash();
+	const hash = hashFiles([...folders, ...files]);
 	if (existsSync(stamp) && readFileSync(stamp, "utf8") === hash) return "up to date";
 	const env = { ...process.env, NODE_ENV: "production" };
 	await run(process.execPath, ["node_modules/@react-router/dev/bin.js", "build"], { env });

@@ -119,8 +119,23 @@ export async function startCluster({ name = "demo", throwaway = false, guarded =
 	}
 }
 
+/** Calls `whenGone` once the cluster's server is no more, unless it was stopped in order. */
+export function watchCluster(cluster, whenGone) {
+	const pid = Number(readFileSync(join(cluster.data, "postmaster.pid"), "utf8").split("\n")[0]);
+	cluster.watch = setInterval(() => {
+		try {
+			process.kill(pid, 0);
+		} catch (error) {
+			if (error.code === "EPERM") return; // there, but another user's
+			clearInterval(cluster.watch);
+			whenGone();
+		}
+	}, 1000).unref();
+}
+
 /** Stops a cluster; sessions in it are ended, what they had committed stays. */
 export async function stopCluster(cluster) {
+	clearInterval(cluster.watch);
 	const stop = (mode) =>
 		inCluster(cluster, "pg_ctl", ["stop", "-D", cluster.data, "-m", mode, "-w", "-t", "30", "-s"], { mayFail: true });
 	if (existsSync(cluster.data) && (await isRunning(cluster)) && (await stop("fast")).code !== 0)

@@ -1,9 +1,10 @@
 // This checkout's database, ready to use: cluster, roles, migrations.
 import { join } from "node:path";
-import { asAdmin, startCluster, stopCluster } from "./cluster.mjs";
+import { asAdmin, startCluster, stopCluster, watchCluster } from "./cluster.mjs";
+import { hashFiles } from "./build.mjs";
 import { databaseUrl, ensureDatabase, ensureRoles } from "./roles.mjs";
 import { local, localSecrets, readState, remember, root, writePrivate } from "./local.mjs";
-import { atEnd } from "./end.mjs";
+import { atEnd, end } from "./end.mjs";
 import { run } from "./run.mjs";
 import { step } from "./steps.mjs";
 
@@ -17,6 +18,12 @@ export async function preparePrivateDatabase({ stays = false } = {}) {
 		cluster = await startCluster({ name: "demo", guarded: !stays });
 		if (left && cluster.wasRunning) cluster.guard?.dismiss();
 		else if (!stays) atEnd(() => stopCluster(cluster));
+		if (!stays) {
+			watchCluster(cluster, () => {
+				console.error(`\nThe database ended by itself, so everything stops. Its log: ${cluster.log}`);
+				end(1);
+			});
+		}
 		remember({ databaseStays: stays || (left && cluster.wasRunning) });
 		return `PostgreSQL ${cluster.version} on 127.0.0.1:${cluster.port}${cluster.wasRunning ? ", was running" : ""}`;
 	});
@@ -32,17 +39,31 @@ export async function preparePrivateDatabase({ stays = false } = {}) {
 	return { cluster, addresses };
 }
 
-export const migrate = (environment) =>
-	step("Migrations", async () => {
-		const { output } = await run(tsx, ["db/migrate.ts"], { env: environment });
-		return output.trim().split("\n").at(-1) || "done";
-	});
+async function runScript(file, env) {
+	const { output } = await run(tsx, [file], { env });
+	return output.trim().split("\n").at(-1) || "done";
+}
 
-export const seed = (environment) =>
-	step("Demo data", async () => {
-		const { output } = await run(tsx, ["db/seed/seed.ts"], { env: environment });
-		return output.trim().split("\n").at(-1) || "done";
-	});
+export const migrate = (env) => step("Migrations", () => runScript("db/migrate.ts", env));
+
+const versionOf = () => hashFiles(["db/migrations", "db/migrate.ts", "db/seed", "package-lock.json"]);
+
+/**
+ * Brings the private database to the present version and fills it when empty. The version is kept as the database's
+ * comment, so that a start which has nothing to do there need not load the programs that would find that out.
+ */
+export async function bringUpToDate(cluster, env) {
+	const version = versionOf();
+	const { output } = await asAdmin(
+		cluster,
+		"tallygrove",
+		"select shobj_description(oid, 'pg_database') from pg_database where datname = current_database()",
+	);
+	if (output.trim() === version) return step("Migrations and demo data", () => "up to date");
+	await migrate(env);
+	await step("Demo data", () => runScript("db/seed/seed.ts", env));
+	await asAdmin(cluster, "tallygrove", `comment on database tallygrove is '${version}'`);
+}
 
 /**
  * People are known by issuer and subject. The demo's issuer is an address whose port can be taken by another program one

@@ -13,8 +13,8 @@ const leaveWithParent = pathToFileURL(join(root, "db/setup/leave-with-parent.mjs
 const pause = (milliseconds) => new Promise((resolve) => setTimeout(resolve, milliseconds));
 
 /** Errors go to the terminal with the service's name before them; everything goes to its log. */
-function keepOutput(child, name, shows) {
-	const log = createWriteStream(join(local, "log", `${name}.log`), { mode: 0o600 });
+function keepOutput(child, name, path, shows) {
+	const log = createWriteStream(path, { mode: 0o600 });
 	const latest = [];
 	const follow = (stream, visible) =>
 		stream.setEncoding("utf8").on("data", (text) => {
@@ -49,7 +49,8 @@ export function startService(name, args, env, { shows = false } = {}) {
 		stdio: ["ignore", "pipe", "pipe", "ipc"],
 	});
 	child.channel?.unref();
-	const service = { name, child, latest: keepOutput(child, name, shows) };
+	const log = join(local, "log", `${name.replaceAll(" ", "-")}.log`);
+	const service = { name, child, log, latest: keepOutput(child, name, log, shows) };
 	if (child.pid) noteService(name, child.pid);
 	atEnd(() => stopService(child));
 	child.on("error", (error) => service.latest.push(error.message));
@@ -58,8 +59,7 @@ export function startService(name, args, env, { shows = false } = {}) {
 		if (isEnding()) return;
 		setTimeout(() => {
 			if (isEnding()) return;
-			console.error(`\nThe ${name} ended by itself (${service.ended}), so everything stops. It said last:`);
-			console.error(service.latest.join("\n") || "(nothing)");
+			console.error(`\nThe ${name} ended by itself (${service.ended}), so everything stops. Its log: ${service.log}`);
 			end(1);
 		}, 200); // its last words are still on their way
 	});
