@@ -5,7 +5,8 @@ import { mapFiguresOf } from "./figures.server.ts";
 import { cropRows } from "./finding.ts";
 import { type Picture, pictureOf } from "./picture.server.ts";
 import type { Release, ReleaseMeasure } from "./release.ts";
-import { listAreas, listCoveredStates, listMeasures } from "./releases.server.ts";
+import { findReleaseById, listAreas, listCoveredStates, listMeasures } from "./releases.server.ts";
+import { type ListedReport, listPublishedReports } from "./reports.server.ts";
 import {
 	type Block,
 	type CautionKey,
@@ -113,3 +114,18 @@ function resolveFigure(reference: Reference, { measures, found }: Source): Resol
 }
 
 const told = ({ label, unit, decimals, hue }: ReleaseMeasure): Told => ({ label, unit, decimals, hue });
+
+/** A published report as a list tells of it: its title and summary with their figures looked up. */
+export type ToldReport = Omit<ListedReport, "title" | "summary"> & { title: ResolvedWords; summary: ResolvedWords };
+
+/** Published reports, the latest first; at most so many. */
+export async function listToldReports(most = Infinity): Promise<ToldReport[]> {
+	const reports = (await listPublishedReports()).slice(0, most);
+	const resolved = reports.map(async (report): Promise<ToldReport[]> => {
+		const release = await findReleaseById(report.releaseId);
+		if (!release) return [];
+		const { title, summary } = await resolveReport({ ...report, blocks: [] }, release);
+		return [{ ...report, title, summary }];
+	});
+	return (await Promise.all(resolved)).flat();
+}

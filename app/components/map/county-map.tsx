@@ -30,7 +30,8 @@ export function CountyMap(props: CountyMapProps) {
 	const hintId = useId();
 	const container = useRef<HTMLDivElement>(null);
 	const [hover, setHover] = useState<{ areaKey: string; x: number; y: number } | null>(null);
-	const lastCounty = useRef<string | null>(null);
+	/** Where the arrow keys stand; a fast walker presses the next key before the page has drawn the last. */
+	const walked = useRef<{ fips: string | null; areaKey: string | null; drawn: string | null } | null>(null);
 	const areaOf = (fips: string | null) => (fips && drawn.areaOfCounty[fips]) || null;
 	const { state, live, retry } = useLiveMap(
 		container,
@@ -62,10 +63,12 @@ export function CountyMap(props: CountyMapProps) {
 			onChoose(null);
 		} else if (step === "in" || step === "out") live.zoom(step === "in" ? 1 : -1);
 		else {
-			const known = lastCounty.current && areaOf(lastCounty.current) === chosen ? lastCounty.current : null;
-			const start = known ?? Object.keys(drawn.areaOfCounty).find((fips) => chosen && areaOf(fips) === chosen) ?? null;
-			lastCounty.current = walk(start, step, live.next, areaOf);
-			onChoose(areaOf(lastCounty.current));
+			const { current } = walked;
+			const going = current && (current.areaKey === chosen || current.drawn === chosen) ? current.fips : null;
+			const start = going ?? Object.keys(drawn.areaOfCounty).find((fips) => chosen && areaOf(fips) === chosen) ?? null;
+			const fips = walk(start, step, live.next, areaOf);
+			walked.current = { fips, areaKey: areaOf(fips), drawn: chosen };
+			onChoose(areaOf(fips));
 		}
 	};
 	const ready = state === "ready";
@@ -76,7 +79,7 @@ export function CountyMap(props: CountyMapProps) {
 					className={classes("map-static h-full", ready && "invisible print:visible")}
 					aria-hidden={ready || undefined}
 				>
-					<StaticMap {...drawn} selected={marked} />
+					<StaticMap {...drawn} selected={ready ? chosen : marked} />
 				</div>
 				{/* A map walked by arrow keys is what the role "application" is for; every figure is in the table too. */}
 				{/* oxlint-disable-next-line jsx-a11y/no-noninteractive-element-interactions */}

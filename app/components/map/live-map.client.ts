@@ -1,10 +1,17 @@
 import "maplibre-gl/dist/maplibre-gl.css";
-import { type ExpressionSpecification, Map as LibraryMap, type MapMouseEvent, setWorkerUrl } from "maplibre-gl";
+import {
+	type ExpressionSpecification,
+	type GeoJSONSource,
+	Map as LibraryMap,
+	type MapMouseEvent,
+	setWorkerUrl,
+} from "maplibre-gl";
 import workerUrl from "maplibre-gl/dist/maplibre-gl-worker.mjs?url";
 import { colorsOfPage, dotImage, hatchImage, type MapColors } from "./map-colors.client.ts";
 import type { FiguresAnswer, GeometryAnswer, Hue } from "./map-data.ts";
-import { boundsOf, middlesOf, nextCounty } from "./map-places.ts";
+import { boundsOf, middlesOf, nextCounty, ringsOf } from "./map-places.ts";
 import { mapStyle, paintedBy } from "./map-style.ts";
+import { outerEdge } from "./outer-edge.ts";
 
 setWorkerUrl(workerUrl);
 
@@ -85,10 +92,16 @@ function controls(map: LibraryMap, geometry: GeometryAnswer, bounds: [number, nu
 			paint();
 		},
 		mark(areaKey) {
-			const ids = Object.entries(shown?.figures.areaOfCounty ?? {}).flatMap(([fips, area]) =>
-				area !== null && area === areaKey ? [Number(fips)] : [],
+			const counties = Object.entries(shown?.figures.areaOfCounty ?? {}).flatMap(([fips, area]) =>
+				area !== null && area === areaKey ? [fips] : [],
 			);
-			for (const layer of ["marked-halo", "marked"]) map.setFilter(layer, ["in", ["id"], ["literal", ids]]);
+			const coordinates = outerEdge(ringsOf(geometry, new Set(counties))) as unknown as [number, number][][];
+			const border = {
+				type: "Feature" as const,
+				properties: {},
+				geometry: { type: "MultiLineString" as const, coordinates },
+			};
+			map.getSource<GeoJSONSource>("marked")?.setData(border);
 		},
 		next: (fips, direction) => nextCounty(middles, fips, direction),
 		zoom: (steps) => map.easeTo({ zoom: map.getZoom() + steps, duration: 150 }),
@@ -108,7 +121,10 @@ function repaint(map: LibraryMap, figures: FiguresAnswer, colors: MapColors) {
 	const painted = paintedBy(figures, colors);
 	map.setPaintProperty("paper", "background-color", colors.paper);
 	map.setPaintProperty("counties", "fill-color", painted.fill as ExpressionSpecification | string);
-	for (const look of ["withheld", "rough"] as const) map.setFilter(look, ["in", ["id"], ["literal", painted[look]]]);
+	for (const look of ["withheld", "rough"] as const) {
+		map.setPaintProperty(look, "fill-pattern", look);
+		map.setFilter(look, ["in", ["id"], ["literal", painted[look]]]);
+	}
 	map.setPaintProperty("county-lines", "line-color", colors.line);
 	map.setPaintProperty("states", "line-color", colors.line);
 	map.setPaintProperty("marked", "line-color", colors.ink);

@@ -14,6 +14,17 @@ function positions(nested: unknown): [number, number][] {
 	return nested.flatMap(positions);
 }
 
+/** Every ring of the named counties. */
+export function ringsOf(geometry: Pick<GeometryAnswer, "counties">, fips: ReadonlySet<string>): [number, number][][] {
+	const rings = (nested: unknown): [number, number][][] => {
+		if (!Array.isArray(nested)) return [];
+		return typeof nested[0]?.[0] === "number" ? [nested as [number, number][]] : nested.flatMap(rings);
+	};
+	return featuresOf(geometry)
+		.filter(({ properties }) => fips.has(properties.fips))
+		.flatMap(({ geometry: { coordinates } }) => rings(coordinates));
+}
+
 function boxOf(points: [number, number][]): Box {
 	const box: Box = [Infinity, Infinity, -Infinity, -Infinity];
 	for (const [x, y] of points) {

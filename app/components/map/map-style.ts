@@ -13,6 +13,7 @@ export function mapStyle(geometry: GeometryAnswer, colors: MapColors): StyleSpec
 			counties: source(geometry.counties),
 			states: source(geometry.stateLines),
 			names: source(geometry.stateNames),
+			marked: source({ type: "FeatureCollection", features: [] }),
 		},
 		layers: [
 			{ id: "paper", type: "background", paint: { "background-color": colors.paper } },
@@ -22,8 +23,9 @@ export function mapStyle(geometry: GeometryAnswer, colors: MapColors): StyleSpec
 				source: "counties",
 				paint: { "fill-color": colors.paper, "fill-antialias": false },
 			},
-			{ id: "withheld", type: "fill", source: "counties", filter: none, paint: { "fill-pattern": "withheld" } },
-			{ id: "rough", type: "fill", source: "counties", filter: none, paint: { "fill-pattern": "rough" } },
+			// The two patterns are drawn in the page's colours and set with them.
+			{ id: "withheld", type: "fill", source: "counties", filter: none },
+			{ id: "rough", type: "fill", source: "counties", filter: none },
 			{
 				id: "county-lines",
 				type: "line",
@@ -34,15 +36,15 @@ export function mapStyle(geometry: GeometryAnswer, colors: MapColors): StyleSpec
 			{
 				id: "marked-halo",
 				type: "line",
-				source: "counties",
-				filter: none,
+				source: "marked",
+				layout: { "line-cap": "round" },
 				paint: { "line-color": colors.mark, "line-width": 7 },
 			},
 			{
 				id: "marked",
 				type: "line",
-				source: "counties",
-				filter: none,
+				source: "marked",
+				layout: { "line-cap": "round" },
 				paint: { "line-color": colors.ink, "line-width": 3 },
 			},
 			{

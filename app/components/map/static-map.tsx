@@ -1,8 +1,9 @@
 import "./map.css";
-import { useId } from "react";
+import { memo, useId } from "react";
 import { useTranslation } from "react-i18next";
 import { fillOf } from "./fills.ts";
 import type { DrawnCell, DrawnClass, Hue } from "./map-data.ts";
+import { outerEdge, pathOfEdges, ringsOfPath } from "./outer-edge.ts";
 import { MapPatterns } from "./patterns.tsx";
 
 export type DrawnPicture = {
@@ -24,11 +25,20 @@ export type StaticMapProps = {
 };
 
 /** The map drawn on the server: for a page without scripts or WebGL, for print, and until the live map is there. */
-export function StaticMap({ picture, cells, classes, areaOfCounty, hue, label, selected }: StaticMapProps) {
+export const StaticMap = memo(function StaticMap({
+	picture,
+	cells,
+	classes,
+	areaOfCounty,
+	hue,
+	label,
+	selected,
+}: StaticMapProps) {
 	const { t } = useTranslation();
 	const id = useId();
 	const byArea = new Map(cells.map((cell) => [cell.areaKey, cell]));
 	const chosen = picture.counties.filter(({ fips }) => selected && areaOfCounty[fips] === selected);
+	const border = pathOfEdges(outerEdge(chosen.flatMap(({ outline }) => ringsOfPath(outline))));
 	return (
 		<svg
 			viewBox={`0 0 ${picture.width} ${picture.height}`}
@@ -43,12 +53,8 @@ export function StaticMap({ picture, cells, classes, areaOfCounty, hue, label, s
 				return <path key={fips} d={outline} {...lookOfShape(cell, hue, classes.length, id)} />;
 			})}
 			<path d={picture.stateLines} className="map-states" />
-			{chosen.map(({ fips, outline }) => (
-				<path key={fips} d={outline} className="map-selected-halo" />
-			))}
-			{chosen.map(({ fips, outline }) => (
-				<path key={fips} d={outline} className="map-selected" />
-			))}
+			{border && <path d={border} className="map-selected-halo" />}
+			{border && <path d={border} className="map-selected" />}
 			<g aria-hidden="true">
 				{picture.stateNames.map(({ stateFips, x, y }) => (
 					<text key={stateFips} x={x} y={y} className="map-state-name">
@@ -58,7 +64,7 @@ export function StaticMap({ picture, cells, classes, areaOfCounty, hue, label, s
 			</g>
 		</svg>
 	);
-}
+});
 
 /** Nothing but the class name and the pattern: a withheld county is told from a blank one by its hatching only. */
 function lookOfShape(cell: DrawnCell | undefined, hue: Hue, classCount: number, id: string) {

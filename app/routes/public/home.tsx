@@ -1,24 +1,20 @@
 import { useTranslation } from "react-i18next";
 import { href, Link } from "react-router";
 import type { Route } from "./+types/home";
-import { ButtonLink } from "#app/components/button.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
-import { Figure } from "#app/components/figure.tsx";
-import { Legend } from "#app/components/map/legend.tsx";
-import { StaticMap } from "#app/components/map/static-map.tsx";
 import { Page } from "#app/components/page.tsx";
-import { CropTable } from "#app/components/report/crop-table.tsx";
+import { useToldText } from "#app/components/report/told-words.tsx";
 import { Section } from "#app/components/section.tsx";
-import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { mapFiguresOf } from "#app/publish/figures.server.ts";
 import { cropRows, findingOf, leadingMeasure } from "#app/publish/finding.ts";
 import { pictureOf } from "#app/publish/picture.server.ts";
 import { findLatestRelease, listCoveredStates, listCropCells, listMeasures } from "#app/publish/releases.server.ts";
-import { listPublishedReports } from "#app/publish/reports.server.ts";
+import { listToldReports } from "#app/publish/resolved-report.server.ts";
+import { FindingPage } from "./parts/home-finding.tsx";
 
 export async function loader() {
-	const [release, reports] = await Promise.all([findLatestRelease(), listPublishedReports()]);
+	const [release, reports] = await Promise.all([findLatestRelease(), listToldReports(1)]);
 	const measure = release && leadingMeasure(await listMeasures(release.releaseId));
 	if (!release || !measure) return { latest: null, reports };
 
@@ -52,92 +48,6 @@ export default function Home({ loaderData: { latest, reports } }: Route.Componen
 	);
 }
 
-type Latest = NonNullable<Route.ComponentProps["loaderData"]["latest"]>;
-
-function FindingPage({ latest, children }: { latest: Latest; children: React.ReactNode }) {
-	const { t, i18n } = useTranslation("public");
-	const { release, measure, finding, rows } = latest;
-	const crop =
-		finding && t(`crop_said.${finding.cell.cropKey}`, { defaultValue: t(`common:crop.${finding.cell.cropKey}`) });
-	const label = wordsIn(measure.label, i18n.language);
-	return (
-		<Page
-			title={
-				finding
-					? t(`finding.${measure.key}`, {
-							defaultValue: t("finding.other"),
-							season: release.season,
-							crop,
-							measure: label,
-						})
-					: t("finding.none", { season: release.season })
-			}
-			lead={finding ? wordsIn(measure.description, i18n.language) : t("finding.noneLead")}
-		>
-			<div className="grid gap-x-10 gap-y-8 lg:grid-cols-[1fr_minmax(0,26rem)]">
-				<div>
-					{finding && (
-						<div className="mb-8">
-							<Figure {...finding.cell} unit={measure.unit} decimals={measure.decimals} size="headline" />
-							<p className="mt-2 text-quiet">
-								{t("home.of", {
-									measure: label,
-									crop: t(`common:crop.${finding.cell.cropKey}`),
-									season: release.season,
-								})}
-							</p>
-						</div>
-					)}
-					<Section title={t("home.crops", { measure: label, season: release.season })}>
-						<CropTable
-							caption={t("home.cropsCaption", { measure: label, season: release.season })}
-							rows={rows}
-							unit={measure.unit}
-							decimals={measure.decimals}
-							linkTo={(cropKey) => mapAddress(release.number, measure.key, cropKey)}
-						/>
-					</Section>
-				</div>
-				<HomeMap latest={latest} />
-			</div>
-			{children}
-		</Page>
-	);
-}
-
-function mapAddress(release: number, measure: string, crop: string): string {
-	return `${href("/map")}?${new URLSearchParams({ release: `${release}`, measure, crop })}`;
-}
-
-function HomeMap({ latest: { release, measure, figures, picture } }: { latest: Latest }) {
-	const { t, i18n } = useTranslation("public");
-	if (!figures || !picture) return null;
-	const title = t("map.shown", {
-		measure: wordsIn(measure.label, i18n.language),
-		crop: t(`common:crop.${figures.cropKey}`),
-		season: release.season,
-	});
-	const shared = { cells: figures.cells, classes: figures.classes, hue: measure.hue };
-	return (
-		<figure>
-			<StaticMap
-				{...shared}
-				picture={picture}
-				areaOfCounty={figures.areaOfCounty}
-				label={t("map.alternative", { title })}
-			/>
-			<figcaption className="mt-3">
-				<Legend {...shared} title={title} notAsked={0} unit={measure.unit} decimals={measure.decimals} />
-				<p className="no-print mt-4">
-					<ButtonLink to={mapAddress(release.number, measure.key, figures.cropKey)} kind="secondary">
-						{t("home.openMap")}
-					</ButtonLink>
-				</p>
-			</figcaption>
-		</figure>
-	);
-}
-
 function About() {
 	const { t } = useTranslation("public");
 	return (
@@ -159,14 +69,15 @@ function About() {
 type LatestReportProps = { report: Route.ComponentProps["loaderData"]["reports"][number] };
 
 function LatestReport({ report }: LatestReportProps) {
-	const { t, i18n } = useTranslation("public");
+	const { t } = useTranslation("public");
 	const format = useFormat();
+	const toldText = useToldText();
 	return (
 		<Section title={t("home.report")}>
 			<p className="text-lg font-bold">
-				<Link to={href("/reports/:slug", { slug: report.slug })}>{wordsIn(report.title, i18n.language)}</Link>
+				<Link to={href("/reports/:slug", { slug: report.slug })}>{toldText(report.title)}</Link>
 			</p>
-			<p className="max-w-prose">{wordsIn(report.summary, i18n.language)}</p>
+			<p className="max-w-prose">{toldText(report.summary)}</p>
 			<p className="mt-1 text-sm text-quiet">{format.dayOf(report.publishedAt)}</p>
 		</Section>
 	);

@@ -1,6 +1,6 @@
 import { useState } from "react";
 import { useTranslation } from "react-i18next";
-import { href, type ShouldRevalidateFunctionArgs, useNavigate, useSearchParams } from "react-router";
+import { href, type ShouldRevalidateFunctionArgs } from "react-router";
 import type { Route } from "./+types/map";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { useAreaName } from "#app/components/map/area-name.ts";
@@ -20,6 +20,7 @@ import { listCoveredStates, listCrops, listMeasures, listReleases } from "#app/p
 import { tableRows } from "#app/publish/table-rows.ts";
 import { MapForm } from "./parts/map-form.tsx";
 import { MapTable } from "./parts/map-table.tsx";
+import { useChosenArea } from "./parts/use-chosen-area.ts";
 
 export async function loader({ request, context }: Route.LoaderArgs) {
 	const query = readMapQuery(request.url);
@@ -90,8 +91,6 @@ function Map({ map }: { map: MapData }) {
 	const { t, i18n } = useTranslation("public");
 	const format = useFormat();
 	const areaName = useAreaName();
-	const navigate = useNavigate();
-	const [search] = useSearchParams();
 	const [pointed, setPointed] = useState<string | null>(null);
 	const { release, measure, cropKey, kind, cells, areaOfCounty } = map;
 	const title = t("map.shown", {
@@ -99,14 +98,8 @@ function Map({ map }: { map: MapData }) {
 		crop: t(`common:crop.${cropKey}`),
 		season: release.season,
 	});
-	const chosen = search.get("area");
+	const [chosen, chooseArea] = useChosenArea();
 	const byArea = Object.fromEntries(cells.map((cell) => [cell.areaKey, cell]));
-	const chooseArea = (areaKey: string | null) => {
-		const next = new URLSearchParams(search);
-		if (areaKey) next.set("area", areaKey);
-		else next.delete("area");
-		void navigate(`?${next}`, { replace: true, preventScrollReset: true });
-	};
 	const drawn = { cells, classes: map.classes, areaOfCounty, hue: measure.hue, picture: map.picture };
 	const figuresAddress = `${href("/map/figures/:release/:measure/:crop", { release: `${release.number}`, measure: measure.key, crop: cropKey })}?kind=${kind}`;
 	const withoutCell = Object.values(areaOfCounty).filter((areaKey) => !areaKey || !byArea[areaKey]).length;
@@ -114,7 +107,7 @@ function Map({ map }: { map: MapData }) {
 		<Page title={title} lead={wordsIn(measure.description, i18n.language)}>
 			<MapForm map={map} chosen={chosen} onChoose={chooseArea} />
 			{map.changed && <Notice tone="info">{t("map.changed", { shown: title })}</Notice>}
-			<div className="grid gap-6 lg:grid-cols-[1fr_17rem]">
+			<div className="grid grid-cols-[minmax(0,1fr)] gap-6 lg:grid-cols-[minmax(0,1fr)_17rem]">
 				<CountyMap
 					{...drawn}
 					label={t("map.alternative", { title })}
@@ -144,7 +137,7 @@ function Map({ map }: { map: MapData }) {
 					</p>
 				</div>
 			</div>
-			<MapTable map={map} title={title} onPoint={setPointed} />
+			<MapTable map={map} title={title} onPoint={setPointed} onChoose={chooseArea} />
 		</Page>
 	);
 }

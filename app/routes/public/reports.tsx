@@ -6,23 +6,10 @@ import { EmptyState } from "#app/components/empty-state.tsx";
 import { Page } from "#app/components/page.tsx";
 import { useToldText } from "#app/components/report/told-words.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { findReleaseById } from "#app/publish/releases.server.ts";
-import { listPublishedReports } from "#app/publish/reports.server.ts";
-import { resolveReport } from "#app/publish/resolved-report.server.ts";
+import { listToldReports } from "#app/publish/resolved-report.server.ts";
 
 export async function loader() {
-	const reports = await listPublishedReports();
-	const listed = await Promise.all(
-		reports.map(async ({ slug, authorName, version, publishedAt, releaseId, title, summary }) => {
-			const release = await findReleaseById(releaseId);
-			if (!release) return [];
-			const told = await resolveReport({ title, summary, blocks: [] }, release);
-			return [
-				{ slug, authorName, version, publishedAt, season: release.season, title: told.title, summary: told.summary },
-			];
-		}),
-	);
-	return { reports: listed.flat() };
+	return { reports: await listToldReports() };
 }
 
 export default function Reports({ loaderData: { reports } }: Route.ComponentProps) {

@@ -4,6 +4,7 @@ import { Button } from "#app/components/button.tsx";
 import { inputClasses } from "#app/components/field-frame.tsx";
 import { useAreaName } from "#app/components/map/area-name.ts";
 import { wordsIn } from "#app/i18n/language.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
 import type { MapCell } from "#app/publish/cell.ts";
 import type { Words } from "#app/lib/words.ts";
 
@@ -29,15 +30,16 @@ export function MapForm({ map, chosen, onChoose }: MapFormProps) {
 		value: `${number}`,
 		label: t("map.form.release", { season, title: wordsIn(title, i18n.language), number }),
 	}));
+	const format = useFormat();
 	const areas = map.cells
 		.map((cell) => ({ value: cell.areaKey, label: areaName(cell) }))
-		.toSorted((a, b) => a.label.localeCompare(b.label, i18n.language));
+		.toSorted((a, b) => format.compare(a.label, b.label));
 	return (
 		<Form
 			key={key}
 			method="get"
 			preventScrollReset
-			className="mb-6 flex flex-wrap items-end gap-3 border-y border-rule py-4"
+			className="mb-6 grid grid-cols-2 items-end gap-3 border-y border-rule py-4 sm:flex sm:flex-wrap"
 		>
 			<Choice name="measure" label={t("map.form.measure")} value={map.measure.key} options={measures} />
 			<Choice
@@ -76,7 +78,7 @@ type ChoiceProps = {
 
 function Choice({ name, label, value, options, onChange }: ChoiceProps) {
 	return (
-		<div className="max-w-full">
+		<div className="min-w-0">
 			<label htmlFor={`field-${name}`} className="block text-sm font-bold">
 				{label}
 			</label>
@@ -85,7 +87,7 @@ function Choice({ name, label, value, options, onChange }: ChoiceProps) {
 				name={name}
 				defaultValue={value}
 				onChange={onChange && ((event) => onChange(event.target.value))}
-				className={`${inputClasses()} mt-1 max-w-72`}
+				className={`${inputClasses()} mt-1 w-full sm:max-w-72`}
 			>
 				{options.map((option) => (
 					<option key={option.value} value={option.value}>

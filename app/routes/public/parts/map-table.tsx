@@ -1,4 +1,4 @@
-import type { FocusEvent, MouseEvent } from "react";
+import { type FocusEvent, memo, type MouseEvent } from "react";
 import { useTranslation } from "react-i18next";
 import { Link, useSearchParams } from "react-router";
 import { type Column, DataTable } from "#app/components/data-table.tsx";
@@ -15,12 +15,18 @@ type MapTableProps = {
 	map: { rows: MapCell[]; measure: ReleaseMeasure; kind: string; query: MapQuery };
 	title: string;
 	onPoint: (areaKey: string | null) => void;
+	onChoose: (areaKey: string) => void;
 };
 
 /** The map's figures as a table. Pointing at a row, or tabbing to it, marks its area on the map. */
-export function MapTable({ map: { rows, measure, kind, query }, title, onPoint }: MapTableProps) {
+export const MapTable = memo(function MapTable({
+	map: { rows, measure, kind, query },
+	title,
+	onPoint,
+	onChoose,
+}: MapTableProps) {
 	const { t } = useTranslation("public");
-	const columns = useColumns(measure, kind);
+	const columns = useColumns(measure, kind, onChoose);
 	const [search] = useSearchParams();
 	const kept = [...search].filter(([key]) => key !== "q");
 	const point = (event: FocusEvent | MouseEvent) => {
@@ -48,9 +54,16 @@ export function MapTable({ map: { rows, measure, kind, query }, title, onPoint }
 			</div>
 		</Section>
 	);
+});
+
+/** A plain press of a row's link chooses without a navigation; with a key held it opens the view's own address. */
+function chosenHere(event: MouseEvent): boolean {
+	if (event.ctrlKey || event.metaKey || event.shiftKey || event.altKey) return false;
+	event.preventDefault();
+	return true;
 }
 
-function useColumns(measure: ReleaseMeasure, kind: string): Column<MapCell>[] {
+function useColumns(measure: ReleaseMeasure, kind: string, onChoose: MapTableProps["onChoose"]): Column<MapCell>[] {
 	const { t } = useTranslation("public");
 	const areaName = useAreaName();
 	const [search] = useSearchParams();
@@ -65,7 +78,14 @@ function useColumns(measure: ReleaseMeasure, kind: string): Column<MapCell>[] {
 			header: t(`common:areaKind.${kind}`),
 			sortable: true,
 			cell: (row) => (
-				<Link to={addressOf(row.areaKey)} replace preventScrollReset data-area={row.areaKey} className="print-plain">
+				<Link
+					to={addressOf(row.areaKey)}
+					replace
+					preventScrollReset
+					data-area={row.areaKey}
+					onClick={(event) => chosenHere(event) && onChoose(row.areaKey)}
+					className="print-plain"
+				>
 					{areaName(row)}
 				</Link>
 			),
