@@ -16,6 +16,7 @@ type Row = {
 };
 type CropTableProps = {
 	caption: string;
+	captionHidden?: boolean;
 	rows: Row[];
 	unit: Unit;
 	decimals: number;
@@ -23,12 +24,24 @@ type CropTableProps = {
 };
 
 /** One measure, crop by crop. */
-export function CropTable({ caption, rows, ...shown }: CropTableProps) {
+export function CropTable({ caption, captionHidden, rows, ...shown }: CropTableProps) {
 	const columns = useCropColumns(shown);
-	return <DataTable caption={caption} captionHidden columns={columns} rows={rows} rowKey={(row) => row.cropKey} />;
+	return (
+		<DataTable
+			caption={caption}
+			captionHidden={captionHidden}
+			columns={columns}
+			rows={rows}
+			rowKey={(row) => row.cropKey}
+		/>
+	);
 }
 
-function useCropColumns({ unit, decimals, linkTo }: Omit<CropTableProps, "caption" | "rows">): Column<Row>[] {
+function useCropColumns({
+	unit,
+	decimals,
+	linkTo,
+}: Omit<CropTableProps, "caption" | "captionHidden" | "rows">): Column<Row>[] {
 	const { t } = useTranslation("public");
 	return [
 		{

@@ -141,7 +141,6 @@ function CropsBlock({ block: { measure, areaName, cells }, season }: Of<"crops">
 	const caption = t("report.cropsOf", { measure: wordsIn(measure.label, i18n.language), area: areaName, season });
 	return (
 		<div className="my-6">
-			<p className="mb-2 font-bold">{caption}</p>
 			<CropTable caption={caption} rows={cells} unit={measure.unit} decimals={measure.decimals} />
 		</div>
 	);

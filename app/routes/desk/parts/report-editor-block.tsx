@@ -79,17 +79,16 @@ function BlockFields({ block, name, label, offered, problems }: BlockFieldsProps
 			);
 		case "caution":
 			return (
-				<ChoiceField
-					kind="radio"
-					name={`${name}.key`}
-					legend={t("report_editor.whichCaution")}
-					defaultValue={block.key}
-					options={cautionKeys.map((key) => ({
-						value: key,
-						label: t(`caution.${key}.title`),
-						help: t(`caution.${key}.body`),
-					}))}
-				/>
+				<>
+					<ChoiceField
+						kind="select"
+						name={`${name}.key`}
+						legend={t("report_editor.whichCaution")}
+						defaultValue={block.key}
+						options={cautionKeys.map((key) => ({ value: key, label: t(`caution.${key}.title`) }))}
+					/>
+					<p className="max-w-prose text-sm text-quiet">{t(`caution.${block.key}.body`)}</p>
+				</>
 			);
 		default:
 			return (

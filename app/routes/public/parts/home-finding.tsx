@@ -38,6 +38,7 @@ export function FindingPage({ latest, children }: { latest: Latest; children: Re
 				<div>
 					<Section title={t("home.crops", shown)}>
 						<CropTable
+							captionHidden
 							caption={t("home.cropsCaption", shown)}
 							rows={rows}
 							unit={measure.unit}

@@ -1,0 +1,64 @@
+import { expect, test } from "vitest";
+import type { CropCell } from "../cell.ts";
+import type { ReleaseMeasure } from "../release.ts";
+import { partsOf, ReportContent } from "../report.ts";
+import { draftReport, type Say } from "./draft-report.ts";
+
+const label = { en: "Loss", es: "Pérdida" };
+const measure = (key: string): ReleaseMeasure => ({
+	key,
+	label,
+	description: label,
+	kind: "ratio",
+	unit: "percent",
+	decimals: 0,
+	worse: "more",
+	hue: "loss",
+});
+const cell = (cropKey: string, areaKey: string, value: number | null): CropCell => ({
+	cropKey,
+	areaKey,
+	areaName: areaKey,
+	kind: areaKey === "network" ? "region" : "district",
+	stateFips: null,
+	status: value === null ? "withheld" : "shown",
+	value,
+	lower: value,
+	upper: value,
+	steadiness: value === null ? null : "steady",
+	respondentsBand: value === null ? null : "50-99",
+});
+const say: Say = (key, values = {}) => `${key} ${Object.values(values).join(" ")}`;
+const input = {
+	release: { season: 2025, title: label },
+	measures: [measure("crop_loss"), measure("freeze_loss")],
+	measure: measure("crop_loss"),
+	counties: { shown: 12, withheld: 34 },
+	say: { en: say, es: say },
+};
+
+test("the draft leads with the worst crop, by reference, and holds no figure as a number", () => {
+	const crops = [cell("all", "network", 90), cell("apple", "network", 41.5), cell("plum", "network", 62.25)];
+	const districts = [cell("plum", "IA-1", 73.5), cell("plum", "IA-2", null), cell("plum", "WI-1", 21.75)];
+	const draft = draftReport({ ...input, crops, districts });
+	expect(ReportContent.parse(draft)).toEqual(draft);
+	expect(partsOf(draft.summary.es)).toContainEqual({
+		kind: "reference",
+		reference: { measure: "crop_loss", crop: "plum", area: "network" },
+	});
+	for (const value of ["62", "41", "73", "21", "90"]) expect(JSON.stringify(draft)).not.toContain(value);
+});
+
+test("the widest differences are between shown districts; a withheld one is not named", () => {
+	const districts = [cell("plum", "IA-1", 73), cell("plum", "IA-2", null), cell("plum", "WI-1", 21)];
+	const draft = JSON.stringify(draftReport({ ...input, crops: [cell("plum", "network", 62)], districts }));
+	expect(draft).toContain("[[crop_loss|plum|IA-1]]");
+	expect(draft).toContain("[[crop_loss|plum|WI-1]]");
+	expect(draft).not.toContain("IA-2");
+});
+
+test("a release in which no crop has a network figure still makes a whole draft with its cautions", () => {
+	const draft = draftReport({ ...input, crops: [cell("plum", "network", null)], districts: [] });
+	expect(draft.summary.en).toContain("noLead");
+	expect(draft.blocks.filter(({ type }) => type === "caution")).toHaveLength(3);
+});
