@@ -79,7 +79,7 @@ export function CountyMap(props: CountyMapProps) {
 					className={classes("map-static h-full", ready && "invisible print:visible")}
 					aria-hidden={ready || undefined}
 				>
-					<StaticMap {...drawn} selected={ready ? chosen : marked} />
+					<StaticMap {...drawn} selected={ready ? chosen : marked} framed />
 				</div>
 				{/* A map walked by arrow keys is what the role "application" is for; every figure is in the table too. */}
 				{/* oxlint-disable-next-line jsx-a11y/no-noninteractive-element-interactions */}
@@ -101,7 +101,12 @@ export function CountyMap(props: CountyMapProps) {
 			<p id={hintId} className={classes("no-print mt-2 text-sm text-quiet", !ready && "hidden")}>
 				{t("map.live.hint")}
 			</p>
-			<output className="mt-2 block min-h-12 border-l-4 border-quince bg-sheet px-4 py-2.5 font-bold">
+			<output
+				className={classes(
+					"mt-2 block min-h-12 border-l-4 border-quince bg-sheet px-4 py-2.5 font-bold",
+					!chosen && "no-print",
+				)}
+			>
 				{chosen ? sentence(chosen) : t("map.said.nothing")}
 			</output>
 			<Trouble state={state} onRetry={retry} />

@@ -1,6 +1,7 @@
 import "./map.css";
 import { memo, useId } from "react";
 import { useTranslation } from "react-i18next";
+import { classes as classNames } from "#app/components/classes.ts";
 import { fillOf } from "./fills.ts";
 import type { DrawnCell, DrawnClass, Hue } from "./map-data.ts";
 import { outerEdge, pathOfEdges, ringsOfPath } from "./outer-edge.ts";
@@ -22,6 +23,8 @@ export type StaticMapProps = {
 	/** What the map shows, in a sentence; the figures themselves stand in the table beside it. */
 	label: string;
 	selected?: string | null;
+	/** Fills a frame of a given height instead of taking its own. */
+	framed?: boolean;
 };
 
 /** The map drawn on the server: for a page without scripts or WebGL, for print, and until the live map is there. */
@@ -33,6 +36,7 @@ export const StaticMap = memo(function StaticMap({
 	hue,
 	label,
 	selected,
+	framed,
 }: StaticMapProps) {
 	const { t } = useTranslation();
 	const id = useId();
@@ -44,7 +48,7 @@ export const StaticMap = memo(function StaticMap({
 			viewBox={`0 0 ${picture.width} ${picture.height}`}
 			role="img"
 			aria-labelledby={`${id}-title`}
-			className="mx-auto block h-auto max-h-[80vh] w-full"
+			className={classNames("mx-auto block w-full", framed ? "h-full print:h-auto" : "h-auto max-h-[80vh]")}
 		>
 			<title id={`${id}-title`}>{label}</title>
 			<MapPatterns id={id} />

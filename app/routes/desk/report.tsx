@@ -6,7 +6,6 @@ import { sessionContext } from "#app/auth/session.server.ts";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
-import { Tabs } from "#app/components/tabs.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -17,6 +16,7 @@ import { findReleaseById } from "#app/publish/releases.server.ts";
 import { missingWords, tooLongWords } from "#app/publish/report.ts";
 import { resolveReport } from "#app/publish/resolved-report.server.ts";
 import { ReportEditor } from "./parts/report-editor.tsx";
+import { ReportViews } from "./parts/report-views.tsx";
 import { ReportPreview } from "./parts/report-preview.tsx";
 import { reportTones } from "./parts/report-table.tsx";
 
@@ -84,15 +84,7 @@ export default function DeskReport({ loaderData, actionData }: Route.ComponentPr
 				</>
 			}
 		>
-			{report.state === "draft" && (
-				<Tabs
-					label={t("report_editor.views")}
-					items={[
-						{ to: address, label: t("report_editor.edit"), end: true },
-						{ to: `${address}?view=preview`, label: t("report_editor.preview"), end: true },
-					]}
-				/>
-			)}
+			{report.state === "draft" && <ReportViews address={address} preview={told !== null} />}
 			{report.note && (
 				<Notice tone="attention" title={t("report_editor.sentBack")}>
 					{report.note}

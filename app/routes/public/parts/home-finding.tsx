@@ -32,7 +32,7 @@ export function FindingPage({ latest, children }: { latest: Latest; children: Re
 	const shown = { measure: label, season: release.season };
 	return (
 		<Page title={useSentence(latest)} lead={wordsIn(measure.description, i18n.language)}>
-			<div className="grid grid-cols-[minmax(0,1fr)] gap-x-10 gap-y-8 lg:grid-cols-[minmax(0,1fr)_minmax(0,26rem)]">
+			<div className="grid grid-cols-[minmax(0,1fr)] gap-x-10 gap-y-8 lg:grid-cols-[minmax(0,1fr)_minmax(0,26rem)] lg:grid-rows-[auto_1fr]">
 				<Headline latest={latest} />
 				<HomeMap latest={latest} />
 				<div>
