@@ -1,4 +1,4 @@
-import i18next from "i18next";
+import { createInstance } from "i18next";
 import { StrictMode, startTransition } from "react";
 import { hydrateRoot } from "react-dom/client";
 import { I18nextProvider, initReactI18next } from "react-i18next";
@@ -14,6 +14,7 @@ z.config({ jitless: true });
 async function hydrate() {
 	const documentLanguage = document.documentElement.lang;
 	const language = isLanguage(documentLanguage) ? documentLanguage : "en";
+	const i18next = createInstance();
 	await i18next
 		.use(initReactI18next)
 		.init({ ...i18nextSettings, lng: language, resources: { [language]: await loadLanguage(language) } });

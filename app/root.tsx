@@ -1,7 +1,3 @@
-import "@fontsource/noto-sans/latin-400.css";
-import "@fontsource/noto-sans/latin-700.css";
-import "@fontsource/noto-sans/latin-ext-400.css";
-import "@fontsource/noto-sans/latin-ext-700.css";
 import "./app.css";
 import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";

@@ -52,7 +52,7 @@ async function findPerson(trx: Trx, personId: string): Promise<Pick<Visitor, "pe
 		grants: {
 			coordinator: grants.some((grant) => grant.role === "coordinator"),
 			researcher: grants.some((grant) => grant.role === "researcher"),
-			stateFips: grants.flatMap((grant) => grant.state_fips ?? []).sort(),
+			stateFips: grants.flatMap((grant) => grant.state_fips ?? []).toSorted(),
 			operationIds: grants.flatMap((grant) => grant.operation_id ?? []),
 		},
 	};

@@ -4,7 +4,7 @@ import { type DraftFigure, publishedFigure, respondentsBand } from "#app/release
 const figure: DraftFigure = {
 	measureKey: "crop_loss",
 	value: 41.46,
-	standardError: 3.14159,
+	standardError: 2.14159,
 	cv: 0.075777,
 	lower: 35.302,
 	upper: 47.618,
@@ -12,7 +12,7 @@ const figure: DraftFigure = {
 };
 
 test("an interval is rounded outwards and its value to the nearest", () => {
-	expect(publishedFigure(figure, 0)).toMatchObject({ value: 41, lower: 35, upper: 48, standardError: 3.14 });
+	expect(publishedFigure(figure, 0)).toMatchObject({ value: 41, lower: 35, upper: 48, standardError: 2.14 });
 	expect(publishedFigure(figure, 1)).toMatchObject({ value: 41.5, lower: 35.3, upper: 47.7 });
 });
 

@@ -100,12 +100,12 @@ function DraftPart({ view }: { view: Route.ComponentProps["loaderData"]["view"] 
 				tone={draft.status === "audit_failed" || draft.status === "failed" ? "caution" : "info"}
 				title={t(`status.${draft.status}.title`)}
 			>
-				<p role="status">
+				<output className="block">
 					{t(`status.${draft.status}.body`, {
 						name: draft.draftedBy.displayName,
 						moment: format.moment(draft.draftedAt),
 					})}
-				</p>
+				</output>
 				{draft.decisionNote && <p className="mt-2">{t("status.note", { note: draft.decisionNote })}</p>}
 				{draft.status === "approved" && (
 					<p className="mt-3">

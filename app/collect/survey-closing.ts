@@ -1,0 +1,47 @@
+const day = /^(\d{4})-(\d{2})-(\d{2})$/;
+const clock = /^(\d{1,2}):(\d{2})$/;
+
+/**
+ * The moment that a calendar day and a clock time name in a time zone.
+ * @param on `2026-12-24`. @param at `17:00`. @param timeZone an IANA name.
+ * @returns null when day or time do not exist in the calendar. A time that the change to summer time skips is moved
+ *   forward by the hour skipped; one that comes twice in autumn is the first of the two.
+ */
+export function momentIn(on: string, at: string, timeZone: string): Date | null {
+	const days = day.exec(on);
+	const times = clock.exec(at);
+	if (!days || !times) return null;
+	const [year, month, date] = days.slice(1).map(Number) as [number, number, number];
+	const [hour, minute] = times.slice(1).map(Number) as [number, number];
+	const wall = Date.UTC(year, month - 1, date, hour, minute);
+	const check = new Date(wall);
+	if (hour > 23 || minute > 59 || check.getUTCMonth() !== month - 1 || check.getUTCDate() !== date) return null;
+	// The zone's distance from UTC is taken a day before and a day after; of the two only one fits, both, or none.
+	const before = wall - offsetAt(wall - 86_400_000, timeZone);
+	const after = wall - offsetAt(wall + 86_400_000, timeZone);
+	const fits = [before, after].filter((moment) => moment + offsetAt(moment, timeZone) === wall);
+	return new Date(fits.length > 0 ? Math.min(...fits) : before);
+}
+
+/** A moment as the day and time that a clock in the zone shows, for the fields of a form. */
+export function wallClockOf(moment: Date, timeZone: string): { on: string; at: string } {
+	const wall = new Date(moment.getTime() + offsetAt(moment.getTime(), timeZone)).toISOString();
+	return { on: wall.slice(0, 10), at: wall.slice(11, 16) };
+}
+
+/** What is added to UTC in a zone at a moment, in milliseconds. */
+function offsetAt(moment: number, timeZone: string): number {
+	const parts = new Intl.DateTimeFormat("en-US", {
+		timeZone,
+		hourCycle: "h23",
+		year: "numeric",
+		month: "numeric",
+		day: "numeric",
+		hour: "numeric",
+		minute: "numeric",
+		second: "numeric",
+	}).formatToParts(moment);
+	const of = (type: string) => Number(parts.find((part) => part.type === type)?.value);
+	const wall = Date.UTC(of("year"), of("month") - 1, of("day"), of("hour"), of("minute"), of("second"));
+	return wall - Math.floor(moment / 1000) * 1000;
+}

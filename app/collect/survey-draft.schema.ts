@@ -1,0 +1,24 @@
+import { z } from "zod";
+
+const text = (most: number) => z.string({ error: "empty" }).trim().min(1, "empty").max(most, "too_long");
+const several = (of: z.ZodType<string>) =>
+	z.preprocess((sent) => (sent === undefined ? [] : sent), z.array(of).min(1, "empty"));
+
+/** A closing day and clock time, as the two fields send them. */
+export const ClosingForm = z.object({
+	closesOn: text(10).regex(/^\d{4}-\d{2}-\d{2}$/, "date_wrong"),
+	closesAt: text(5).regex(/^\d{1,2}:\d{2}$/, "time_wrong"),
+	timeZone: text(60),
+});
+export type ClosingForm = z.infer<typeof ClosingForm>;
+
+/** A survey as the desk's form sends it. Whether states are granted and crops known, the writing function checks. */
+export const SurveyDraft = ClosingForm.extend({
+	formKey: z.literal("after_harvest", { error: "choice_wrong" }),
+	season: z.coerce.number({ error: "empty" }).int("not_whole").min(2000, "season_wrong").max(2100, "season_wrong"),
+	titleEn: text(120),
+	titleEs: text(120),
+	crops: several(z.string().max(40, "choice_wrong")),
+	states: several(z.string().max(2, "choice_wrong")),
+});
+export type SurveyDraft = z.infer<typeof SurveyDraft>;

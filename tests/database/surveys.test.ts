@@ -1,0 +1,176 @@
+import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import type { Client } from "pg";
+import type { Associate } from "#app/auth/viewer.ts";
+import { closeSurvey, extendSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
+import { createSurvey, findSurvey, listSurveys } from "#app/collect/surveys.server.ts";
+import { createTestDatabase } from "#tests/helpers/database.ts";
+import {
+	addOperation,
+	addPerson,
+	asDesk,
+	connectOwner,
+	count,
+	draftOf,
+	loadPlaces,
+	useDatabase,
+} from "./surveys-fixture.ts";
+
+let database: Awaited<ReturnType<typeof createTestDatabase>>;
+let owner: Client;
+let iowa: Associate;
+let wisconsin: Associate;
+let both: Associate;
+
+beforeAll(async () => {
+	database = await createTestDatabase();
+	useDatabase(database);
+	owner = await connectOwner(database.ownerUrl);
+	await loadPlaces(owner);
+	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
+	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
+	both = await addPerson(owner, "Associate of both", ["19", "55"]);
+});
+afterAll(async () => {
+	await owner.end();
+	await database.drop();
+});
+
+async function create(viewer: Associate, states: string[], more = {}): Promise<string> {
+	const made = await asDesk(viewer, (trx) => createSurvey(trx, viewer, draftOf(states, more)));
+	if (!("surveyId" in made) || !made.surveyId) throw new Error(JSON.stringify(made));
+	return made.surveyId;
+}
+const open = (viewer: Associate, surveyId: string) => asDesk(viewer, (trx) => openSurvey(trx, viewer, surveyId));
+
+describe("a draft", () => {
+	test("is refused for a state that is not granted, an unknown crop and a closing time gone by, all at once", async () => {
+		const draft = draftOf(["19", "55"], { crops: ["apple", "moonfruit"], closesOn: "2020-01-01" });
+		const made = await asDesk(iowa, (trx) => createSurvey(trx, iowa, draft));
+		expect(made).toEqual({
+			problems: [
+				{ field: "crops", code: "choice_wrong" },
+				{ field: "states", code: "choice_wrong" },
+				{ field: "closesOn", code: "closing_past" },
+			],
+		});
+	});
+
+	test("is seen by associates of one of its states and by no other", async () => {
+		const surveyId = await create(both, ["19", "55"]);
+		const iowaOnly = await create(iowa, ["19"]);
+		const seen = await asDesk(wisconsin, (trx) => listSurveys(trx, wisconsin));
+		expect(seen.map((survey) => survey.surveyId)).toContain(surveyId);
+		expect(seen.map((survey) => survey.surveyId)).not.toContain(iowaOnly);
+		expect(await asDesk(wisconsin, (trx) => findSurvey(trx, wisconsin, iowaOnly))).toBeUndefined();
+		expect(await asDesk(wisconsin, (trx) => findSurvey(trx, wisconsin, "1 or 1=1"))).toBeUndefined();
+		expect(await count(owner, "collect.survey where survey_id = $1", [iowaOnly])).toBe(1);
+	});
+});
+
+describe("opening", () => {
+	test("freezes the growers who have the crop, with their size and stratum, and leaves the others out", async () => {
+		const small = await addOperation(owner, { state: "19", trees: 99 });
+		const medium = await addOperation(owner, { state: "19", trees: 100 });
+		const large = await addOperation(owner, { state: "55", trees: 1000 });
+		const left = await addOperation(owner, { state: "19", status: "left" });
+		const pulledOut = await addOperation(owner, { state: "19", removedOn: "2024-05-01" });
+		const plums = await addOperation(owner, { state: "19", crop: "plum" });
+		const surveyId = await create(both, ["19", "55"]);
+		expect(await open(both, surveyId)).toBe("opened");
+
+		const { rows } = await owner.query(
+			"select operation_id, stratum_key from collect.frame_operation where survey_id = $1",
+			[surveyId],
+		);
+		const strata = new Map(rows.map((row) => [row.operation_id, row.stratum_key]));
+		expect([small, medium, large].map((id) => strata.get(id))).toEqual(["IA-small", "IA-medium", "WI-large"]);
+		expect([left, pulledOut, plums].filter((id) => strata.has(id))).toEqual([]);
+		const crops = await owner.query(
+			"select bearing_trees from collect.frame_crop where survey_id = $1 and operation_id = $2",
+			[surveyId, medium],
+		);
+		expect(crops.rows).toEqual([{ bearing_trees: 100 }]);
+	});
+
+	test("twice, also at the same moment, opens once and logs once", async () => {
+		await addOperation(owner, { state: "19" });
+		const surveyId = await create(iowa, ["19"]);
+		const outcomes = await Promise.all([open(iowa, surveyId), open(iowa, surveyId), open(iowa, surveyId)]);
+		expect(outcomes.toSorted()).toEqual(["already_open", "already_open", "opened"]);
+		expect(await count(owner, "log.event where subject_id = $1 and action = 'survey.opened'", [surveyId])).toBe(1);
+	});
+
+	test("keeps the frame as it was when the directory changes afterwards", async () => {
+		const operationId = await addOperation(owner, { state: "19", trees: 10 });
+		const surveyId = await create(iowa, ["19"]);
+		await open(iowa, surveyId);
+		await owner.query("update directory.planting set bearing_trees = 5000 where operation_id = $1", [operationId]);
+		const late = await addOperation(owner, { state: "19" });
+		expect(await open(iowa, surveyId)).toBe("already_open");
+		const frame = await owner.query(
+			"select size_class from collect.frame_operation where survey_id = $1 and operation_id = $2",
+			[surveyId, operationId],
+		);
+		expect(frame.rows).toEqual([{ size_class: "small" }]);
+		expect(await count(owner, "collect.frame_operation where operation_id = $1", [late])).toBe(0);
+	});
+
+	test("needs every state of the survey, or growers would be left out without a word", async () => {
+		await addOperation(owner, { state: "19" });
+		const surveyId = await create(both, ["19", "55"]);
+		expect(await open(iowa, surveyId)).toBe("states_not_held");
+		expect(await count(owner, "collect.frame_operation where survey_id = $1", [surveyId])).toBe(0);
+	});
+
+	test("of a survey that asks about a crop nobody grows stays a draft", async () => {
+		await owner.query("insert into directory.crop values ('pawpaw', 5, 'tree', null) on conflict do nothing");
+		const surveyId = await create(iowa, ["19"], { crops: ["pawpaw"] });
+		expect(await open(iowa, surveyId)).toBe("nobody_in_frame");
+		expect((await asDesk(iowa, (trx) => findSurvey(trx, iowa, surveyId)))?.state).toBe("draft");
+	});
+
+	test("of another state's survey finds nothing", async () => {
+		const surveyId = await create(wisconsin, ["55"]);
+		expect(await open(iowa, surveyId)).toBe("not_found");
+	});
+});
+
+describe("an open survey", () => {
+	test("closes once; afterwards its closing time stays where it is", async () => {
+		await addOperation(owner, { state: "19" });
+		const surveyId = await create(iowa, ["19"]);
+		const close = () => asDesk(iowa, (trx) => closeSurvey(trx, iowa, surveyId));
+		expect(await close()).toBe("not_open");
+		await open(iowa, surveyId);
+		expect([await close(), await close()]).toEqual(["closed", "already_closed"]);
+		const later = new Date(Date.now() + 90 * 86_400_000);
+		expect(await asDesk(iowa, (trx) => extendSurvey(trx, iowa, surveyId, later))).toBe("already_closed");
+	});
+
+	test("takes its personal links along when its closing time moves", async () => {
+		const operationId = await addOperation(owner, { state: "19" });
+		const surveyId = await create(iowa, ["19"]);
+		await open(iowa, surveyId);
+		await owner.query(
+			"insert into collect.personal_link (survey_id, operation_id, token_hash, expires_at) values ($1::uuid, $2, ($1::uuid)::text, now())",
+			[surveyId, operationId],
+		);
+		const later = new Date(Date.now() + 90 * 86_400_000);
+		expect(await asDesk(iowa, (trx) => extendSurvey(trx, iowa, surveyId, later))).toBe("extended");
+		const { rows } = await owner.query("select expires_at from collect.personal_link where survey_id = $1", [surveyId]);
+		expect(rows).toEqual([{ expires_at: later }]);
+	});
+
+	test("counts only growers and answers of the viewer's states", async () => {
+		await addOperation(owner, { state: "55" });
+		const surveyId = await create(both, ["19", "55"]);
+		await open(both, surveyId);
+		const inFrame = async (viewer: Associate) =>
+			(await asDesk(viewer, (trx) => findSurvey(trx, viewer, surveyId)))?.inFrame;
+		const inIowa = await count(owner, "collect.frame_operation where survey_id = $1 and state_fips = '19'", [surveyId]);
+		const inBoth = await count(owner, "collect.frame_operation where survey_id = $1", [surveyId]);
+		expect(inBoth).toBeGreaterThan(inIowa);
+		expect(await inFrame(iowa)).toBe(inIowa);
+		expect(await inFrame(both)).toBe(inBoth);
+	});
+});
