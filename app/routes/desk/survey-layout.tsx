@@ -1,5 +1,34 @@
-import { Outlet } from "react-router";
+import { useTranslation } from "react-i18next";
+import { href, Outlet } from "react-router";
+import type { Route } from "./+types/survey-layout";
+import { requireAssociate } from "#app/auth/guard.server.ts";
+import { findSurvey } from "#app/collect/surveys.server.ts";
+import { Page } from "#app/components/page.tsx";
+import { Tabs } from "#app/components/tabs.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import { refusal } from "#app/lib/refusal.ts";
 
-export default function Layout() {
-	return <Outlet />;
+export async function loader({ context, params }: Route.LoaderArgs) {
+	const desk = requireAssociate(context);
+	const survey = await desk.transaction((trx) => findSurvey(trx, desk.viewer, params.surveyId));
+	if (!survey) throw refusal("survey_not_found");
+	return { title: survey.title, season: survey.season };
+}
+
+export default function SurveyLayout({ loaderData, params }: Route.ComponentProps) {
+	const { t, i18n } = useTranslation("desk");
+	const { title, season } = loaderData;
+	return (
+		<Page title={t("surveys.name", { title: wordsIn(title, i18n.language), season })}>
+			<Tabs
+				label={t("survey.parts")}
+				items={[
+					{ to: href("/desk/surveys/:surveyId", params), label: t("survey.people"), end: true },
+					{ to: href("/desk/surveys/:surveyId/estimates", params), label: t("survey.estimates") },
+					{ to: href("/desk/surveys/:surveyId/release", params), label: t("survey.release") },
+				]}
+			/>
+			<Outlet />
+		</Page>
+	);
 }
