@@ -29,7 +29,7 @@ export async function openPage(browser: Browser, options: BrowserContextOptions 
 	page.on("console", (message) => {
 		if (message.type() === "error") complaints.push(`${page.url()}: ${message.text()}`);
 	});
-	page.setDefaultTimeout(15_000);
+	page.setDefaultTimeout(30_000);
 	return Object.assign(page, { complaints });
 }
 

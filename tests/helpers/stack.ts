@@ -19,7 +19,7 @@ const programs: Record<ProgramName, string[]> = {
 	mail: ["--import", "tsx", "fakes/mail/server.ts"],
 	signIn: ["--import", "tsx", "fakes/sign-in/server.ts"],
 	worker: ["--import", "tsx", "app/jobs/worker.ts"],
-	server: ["node_modules/@react-router/serve/bin.cjs", "build/server/index.js"],
+	server: ["node_modules/@react-router/serve/bin.js", "build/server/index.js"],
 };
 
 /**
