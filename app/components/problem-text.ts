@@ -1,5 +1,6 @@
 import { useTranslation } from "react-i18next";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { decimalsOf } from "#app/lib/format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 
 /** A problem in the words of its field's label: alike beside the field and in the summary. */
@@ -31,9 +32,4 @@ function lowerFirst(text: string): string {
 
 function upperFirst(text: string): string {
 	return text.charAt(0).toUpperCase() + text.slice(1);
-}
-
-/** As many decimals as the number has, up to three. */
-function decimalsOf(value: number): number {
-	return Math.min(3, String(value).split(".")[1]?.length ?? 0);
 }

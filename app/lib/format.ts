@@ -41,3 +41,8 @@ export function formatterFor(language: string, t: TFunction) {
 	};
 }
 export type Formatter = ReturnType<typeof formatterFor>;
+
+/** As many decimals as a number has, up to three: what somebody typed is told as typed. */
+export function decimalsOf(value: number): number {
+	return Number(value.toFixed(3)).toString().split(".")[1]?.length ?? 0;
+}
