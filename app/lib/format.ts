@@ -1,8 +1,12 @@
 import type { TFunction } from "i18next";
-import { localeOf } from "#app/i18n/language.ts";
 
 export type Unit =
 	"percent" | "percent_of_normal" | "lb_per_tree" | "lb" | "trees" | "operations" | "acres" | "bushels" | "kg" | "tons";
+
+/** The locale of numbers and dates. es-US, as Spanish speakers in the states read decimal points and not commas. */
+function localeOf(language: string): "en-US" | "es-US" {
+	return language === "es" ? "es-US" : "en-US";
+}
 
 /**
  * The one formatter of numbers, units and dates, in the reader's language. Units come from the shared words

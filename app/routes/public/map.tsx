@@ -8,9 +8,10 @@ import { CountyMap } from "#app/components/map/county-map.tsx";
 import { Legend } from "#app/components/map/legend.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
-import { localeOf, wordsIn } from "#app/i18n/language.ts";
-import { getLanguage } from "#app/i18n/middleware.server.ts";
+import { wordsIn } from "#app/i18n/language.ts";
+import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { formatterFor } from "#app/lib/format.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { mapFiguresOf } from "#app/publish/figures.server.ts";
 import { countiesAddress } from "#app/publish/geometry.server.ts";
@@ -42,7 +43,7 @@ export async function loader({ request, context }: Route.LoaderArgs) {
 		mapFiguresOf(release, measure, cropChoice.key ?? "all", query.kind),
 		listCoveredStates(release.releaseId),
 	]);
-	const { compare } = new Intl.Collator(localeOf(getLanguage(context)), { numeric: true });
+	const { compare } = formatterFor(getLanguage(context), getT(context, "common"));
 	const [picture, outlines] = [pictureOf(states), countiesAddress(states)];
 	if (!figures || !picture || !outlines) return { map: null };
 	const seasons = releases.map(({ number, season, title }) => ({ number, season, title }));
