@@ -47,7 +47,12 @@ export const Question = z.discriminatedUnion("type", [
 		prefill: z.enum(["bearing_trees"]).optional(),
 	}),
 	z.object({ ...questionBase, type: z.literal("percent"), limits }),
-	z.object({ ...questionBase, type: z.literal("date") }),
+	z.object({
+		...questionBase,
+		type: z.literal("date"),
+		/** The date question of the same screen whose day this one must not come before. */
+		notBefore: Key.optional(),
+	}),
 	z.object({
 		...questionBase,
 		type: z.literal("choice"),

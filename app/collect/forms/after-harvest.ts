@@ -98,6 +98,7 @@ export const afterHarvest: FormDefinition = {
 				{
 					key: "last_harvest",
 					type: "date",
+					notBefore: "first_harvest",
 					text: { en: "Last day of harvest", es: "Último día de cosecha" },
 					required: false,
 					sensitive: false,

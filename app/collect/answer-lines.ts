@@ -1,0 +1,85 @@
+import type { Words } from "#app/lib/words.ts";
+import type { Answer, FormDefinition, Question } from "./form.ts";
+import { answersByPlace, listAsked, placeOf, type PlantingAsked } from "./steps.ts";
+import { fromPounds, isMassUnit, type MassUnit } from "./units.ts";
+
+export type ShownAnswer =
+	| { kind: "quantity"; value: number; unit: MassUnit | "trees" | "percent" | "count" }
+	| { kind: "day"; day: string }
+	| { kind: "words"; words: Words[] }
+	| { kind: "text"; text: string }
+	| { kind: "dont_know" }
+	| { kind: "refused" }
+	| { kind: "none" };
+export type AnswerGroup = {
+	stepKey: string;
+	title: Words;
+	planting: PlantingAsked | null;
+	lines: { questionKey: string; text: Words; shown: ShownAnswer }[];
+};
+
+/**
+ * What a review page, a receipt or the desk lists: every question that is asked, step by step, with what was answered,
+ * weights in the unit in which they were given.
+ */
+export function listAnswerLines(
+	definition: FormDefinition,
+	plantings: PlantingAsked[],
+	answers: Answer[],
+): AnswerGroup[] {
+	const byPlace = answersByPlace(answers);
+	return listAsked(definition, plantings, answers).map(({ step, questions }) => ({
+		stepKey: step.key,
+		title: step.screen.title,
+		planting: step.planting,
+		lines: questions.map((question) => ({
+			questionKey: question.key,
+			text: question.text,
+			shown: shownAs(
+				question,
+				byPlace.get(placeOf(question.key, step.planting?.plantingId ?? null)),
+				step.planting?.bushelLb ?? null,
+			),
+		})),
+	}));
+}
+
+function shownAs(question: Question, answer: Answer | undefined, bushelLb: number | null): ShownAnswer {
+	if (answer === undefined) return { kind: "none" };
+	if (answer.kind !== "given") return { kind: answer.kind };
+	const { value } = answer;
+	switch (question.type) {
+		case "number":
+		case "percent":
+			return typeof value === "number" ? quantity(question, value, answer.given?.unit, bushelLb) : { kind: "none" };
+		case "date":
+			return { kind: "day", day: String(value) };
+		case "choice":
+		case "rating":
+		case "several": {
+			const chosen = Array.isArray(value) ? value : [value];
+			const words = question.options.filter(({ key }) => chosen.includes(key)).map(({ text }) => text);
+			return words.length > 0 ? { kind: "words", words } : { kind: "none" };
+		}
+		case "short_text":
+		case "long_text":
+			return { kind: "text", text: String(value) };
+		case "photo":
+			return { kind: "none" };
+	}
+}
+
+function quantity(
+	question: Extract<Question, { type: "number" | "percent" }>,
+	value: number,
+	givenIn: string | undefined,
+	bushelLb: number | null,
+): ShownAnswer {
+	if (question.type === "percent") return { kind: "quantity", value, unit: "percent" };
+	if (question.unitFamily === "trees") return { kind: "quantity", value, unit: "trees" };
+	if (question.unitFamily !== "mass") return { kind: "quantity", value, unit: "count" };
+	// A crop that lost its bushel weight since is told in pounds, as it is kept.
+	const unit = isMassUnit(givenIn) && (givenIn !== "bu" || bushelLb !== null) ? givenIn : "lb";
+	// Dividing what was multiplied can leave 12.500000000000002.
+	return { kind: "quantity", value: Number(fromPounds(value, unit, bushelLb).toPrecision(12)), unit };
+}

@@ -1,0 +1,162 @@
+import type { Answer, Question } from "./form.ts";
+import { postedChoices, postedText, type StepValues } from "./posted.ts";
+import { parseTypedNumber } from "./typed-number.ts";
+import { cleanText, lengthOf } from "./typed-text.ts";
+import { fromPounds, isMassUnit, type MassUnit, massUnitsFor, toPounds } from "./units.ts";
+
+export type ReadSettings = { language: "en" | "es"; season: number; today: string };
+/** An answer, null where nothing was said, or what is to be mended. */
+export type Reading =
+	| { answer: Pick<Answer, "kind" | "value" | "given"> | null }
+	| { code: string; detail?: Record<string, string | number> };
+type NumberQuestion = Extract<Question, { type: "number" | "percent" }>;
+type OptionQuestion = Extract<Question, { type: "choice" | "rating" | "several" }>;
+
+/** No box takes more; what is longer is refused before anything looks into it. */
+const longestBox = 10_000;
+
+/** Reads what was posted for one question: a value, "don't know" or "would rather not say", of which only one can be. */
+export function readQuestion(
+	question: Question,
+	bushelLb: number | null,
+	values: StepValues,
+	settings: ReadSettings,
+): Reading {
+	switch (question.type) {
+		case "choice":
+		case "rating":
+		case "several":
+			return readOptions(question, values);
+		case "photo":
+			return { answer: null };
+		default: {
+			const typed = postedText(values, question.key);
+			if (typed.length > longestBox) return tooLong(question);
+			const text = cleanText(typed);
+			const kind = readKind(values, `${question.key}_kind`, text !== "");
+			if (kind !== null) return kind;
+			if (text === "") return blank(question);
+			return readText(question, text, bushelLb, values, settings);
+		}
+	}
+}
+
+/** Reads a pair of ticks. @returns null when none is ticked. */
+export function readKind(values: StepValues, name: string, typed: boolean): Reading | null {
+	const kinds = postedChoices(values, name);
+	const [kind] = kinds;
+	if (kind === undefined) return null;
+	if (!kinds.every((ticked) => ticked === "dont_know" || ticked === "refused")) return { code: "choice_wrong" };
+	if (kinds.length > 1 || typed) return { code: "value_and_unknown" };
+	return silence(kind as "dont_know" | "refused");
+}
+
+function silence(kind: "dont_know" | "refused"): Reading {
+	return { answer: { kind, value: null, given: null } };
+}
+
+function blank(question: Question): Reading {
+	return question.required ? { code: "empty" } : { answer: null };
+}
+
+function tooLong(question: Question): Reading {
+	const hasMost = question.type === "short_text" || question.type === "long_text";
+	return hasMost ? { code: "too_long_limit", detail: { max: question.maxLength } } : { code: "too_long" };
+}
+
+function readText(
+	question: Exclude<Question, OptionQuestion | { type: "photo" }>,
+	text: string,
+	bushelLb: number | null,
+	values: StepValues,
+	settings: ReadSettings,
+): Reading {
+	switch (question.type) {
+		case "number":
+		case "percent":
+			return readNumber(question, text, bushelLb, values, settings.language);
+		case "date":
+			return readDate(text, settings);
+		case "short_text":
+		case "long_text":
+			if (lengthOf(text) > question.maxLength) return tooLong(question);
+			return { answer: { kind: "given", value: text, given: null } };
+	}
+}
+
+function readNumber(
+	question: NumberQuestion,
+	text: string,
+	bushelLb: number | null,
+	values: StepValues,
+	language: string,
+): Reading {
+	const typed = parseTypedNumber(text, language);
+	if (!typed.ok) return { code: numberProblems[typed.code] };
+	if (question.type === "number" && question.unitFamily === "mass") {
+		if (typed.percentSign) return { code: "unit_unknown" };
+		const chosen = postedText(values, `${question.key}_unit`);
+		const unit = typed.unit ?? chosen;
+		if (unit === "") return { code: "unit_missing" };
+		if (!isMassUnit(unit) || !massUnitsFor(bushelLb).includes(unit)) return { code: "unit_unknown" };
+		const pounds = toPounds(typed.value, unit, bushelLb);
+		return (
+			outside(pounds, question.limits, (limit) => fromPounds(limit, unit, bushelLb)) ?? amount(pounds, { text, unit })
+		);
+	}
+	if (typed.unit !== null || (typed.percentSign && question.type !== "percent")) return { code: "unit_unknown" };
+	const counted = question.type === "number" && (question.unitFamily === "trees" || question.unitFamily === "count");
+	if (counted && !Number.isInteger(typed.value)) return { code: "not_whole" };
+	return outside(typed.value, limitsOf(question), (limit) => limit) ?? amount(typed.value, { text });
+}
+
+const numberProblems = {
+	negative: "negative",
+	not_a_number: "not_a_number",
+	number_unclear: "ambiguous_number",
+	unit_unclear: "unit_unknown",
+	unit_not_known: "unit_unknown",
+	too_long: "too_long",
+} as const;
+
+function amount(value: number, given: { text: string; unit?: MassUnit }): Reading {
+	return { answer: { kind: "given", value, given } };
+}
+
+function limitsOf(question: NumberQuestion): NumberQuestion["limits"] {
+	if (question.type !== "percent") return question.limits;
+	const { hardMin = 0, hardMax = 100 } = question.limits ?? {};
+	return { hardMin: Math.max(0, hardMin), hardMax: Math.min(100, hardMax) };
+}
+
+/** A hard limit that is broken, told in the unit that the grower uses; three decimals keep it on the right side. */
+function outside(value: number, limits: NumberQuestion["limits"], shown: (limit: number) => number): Reading | null {
+	const { hardMin = -Infinity, hardMax = Infinity } = limits ?? {};
+	if (value > hardMax) return { code: "too_large_limit", detail: { max: Math.floor(shown(hardMax) * 1000) / 1000 } };
+	if (value < hardMin) return { code: "too_small_limit", detail: { min: Math.ceil(shown(hardMin) * 1000) / 1000 } };
+	return null;
+}
+
+/** A day of the season's year that is not still to come. Days of ISO 8601 compare as texts. */
+function readDate(text: string, { season, today }: ReadSettings): Reading {
+	const moment = /^\d{4}-\d{2}-\d{2}$/.test(text) ? Date.parse(`${text}T00:00:00Z`) : Number.NaN;
+	if (Number.isNaN(moment) || new Date(moment).toISOString().slice(0, 10) !== text) return { code: "date_wrong" };
+	if (text.slice(0, 4) !== String(season)) return { code: "date_outside_season" };
+	if (text > today) return { code: "date_in_future" };
+	return { answer: { kind: "given", value: text, given: null } };
+}
+
+/** The two silences stand in the list of options, so that one tap answers. */
+function readOptions(question: OptionQuestion, values: StepValues): Reading {
+	const chosen = postedChoices(values, question.key);
+	const silences = chosen.filter((key) => key === "_dont_know" || key === "_refused");
+	const options = question.options.map(({ key }) => key).filter((key) => chosen.includes(key));
+	if (silences.length + options.length < chosen.length) return { code: "choice_wrong" };
+	if (silences.length > 1 || (silences.length === 1 && options.length > 0)) return { code: "value_and_unknown" };
+	if (silences.length === 1) return silence(silences[0] === "_refused" ? "refused" : "dont_know");
+	const [first] = options;
+	if (first === undefined) return blank(question);
+	if (question.type === "several") return { answer: { kind: "given", value: options, given: null } };
+	// A radio group sends one value; two of them come from no page of ours.
+	return options.length > 1 ? { code: "choice_wrong" } : { answer: { kind: "given", value: first, given: null } };
+}
