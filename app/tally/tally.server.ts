@@ -61,7 +61,8 @@ export async function listCropRespondents(trx: Transaction<DB>, surveyId: string
 
 /**
  * The strata of a survey's frozen frame, crop by crop: how many operations of each have the crop. Crop `all` counts the
- * operations that have any, each once.
+ * operations that have any, each once. An operation found not eligible (out of business, no such crop) stands for nobody,
+ * so it is left out: counting it would let its neighbours' answers stand for it.
  */
 export async function listFrameStrata(
 	trx: Transaction<DB>,
@@ -73,7 +74,7 @@ export async function listFrameStrata(
 			array_position(array['small', 'medium', 'large'], o.size_class) as "sizeClass",
 			count(distinct c.operation_id)::int as "frameSize"
 		from collect.frame_crop c join collect.frame_operation o using (survey_id, operation_id)
-		where c.survey_id = ${surveyId}
+		where c.survey_id = ${surveyId} and o.disposition <> 'not_eligible'
 		group by grouping sets ((c.crop_key, ${stratum}), (${stratum}))
 		order by 1, 2`.execute(trx);
 	return rows;

@@ -40,6 +40,52 @@ async function surveyWith(...facts: NewFact[]): Promise<string> {
 	return surveyId;
 }
 
+async function addOperation(): Promise<string> {
+	const place = { county_fips: "55025", state_fips: "55" };
+	const { owner_id } = await owner
+		.insertInto("directory.owner")
+		.values({ name: "Ada Quill" })
+		.returning("owner_id")
+		.executeTakeFirstOrThrow();
+	const { operation_id } = await owner
+		.insertInto("directory.operation")
+		.values({ ...place, owner_id, name: "Quail Bend Orchard", contact_name: "Ada Quill" })
+		.returning("operation_id")
+		.executeTakeFirstOrThrow();
+	return operation_id;
+}
+
+/** A survey whose frame holds these operations, each with apples. */
+async function surveyOf(...operations: string[]): Promise<string> {
+	const { form_id } = await owner
+		.insertInto("collect.form")
+		.values({ form_key: "frame_form" })
+		.returning("form_id")
+		.executeTakeFirstOrThrow();
+	const { form_version_id } = await owner
+		.insertInto("collect.form_version")
+		.values({ form_id, version: 1, definition: "{}" })
+		.returning("form_version_id")
+		.executeTakeFirstOrThrow();
+	const { survey_id } = await owner
+		.insertInto("collect.survey")
+		.values({ form_version_id, season: 2031, title: "{}", crop_keys: ["apple"], closes_at: new Date() })
+		.returning("survey_id")
+		.executeTakeFirstOrThrow();
+	for (const operation_id of operations) {
+		const frame = { survey_id, operation_id, owner_id: crypto.randomUUID(), county_fips: "55025", state_fips: "55" };
+		await owner
+			.insertInto("collect.frame_operation")
+			.values({ ...frame, size_class: "small", stratum_key: "WI small" })
+			.execute();
+		await owner
+			.insertInto("collect.frame_crop")
+			.values({ survey_id, operation_id, crop_key: "apple", bearing_trees: 40 })
+			.execute();
+	}
+	return survey_id;
+}
+
 function talliesOf(surveyId: string) {
 	return owner.transaction().execute((trx) => listTallies(trx, surveyId));
 }
@@ -97,6 +143,25 @@ test("a stratum's respondents to a crop are counted over counties, without those
 	expect(respondents).toEqual([
 		{ cropKey: "apple", stratumKey: "55|large", respondents: 1 },
 		{ cropKey: "apple", stratumKey: "55|small", respondents: 2 },
+	]);
+});
+
+test("the frame counts who has the crop, and nobody who turned out not to be eligible", async () => {
+	const [operation, left] = [await addOperation(), await addOperation()];
+	const surveyId = await surveyOf(operation, left);
+	const strata = () => owner.transaction().execute((trx) => listFrameStrata(trx, surveyId));
+	expect((await strata()).map(({ cropKey, frameSize }) => [cropKey, frameSize])).toEqual([
+		["all", 2],
+		["apple", 2],
+	]);
+	await owner
+		.updateTable("collect.frame_operation")
+		.set({ disposition: "not_eligible" })
+		.where("operation_id", "=", left)
+		.execute();
+	expect((await strata()).map(({ cropKey, frameSize }) => [cropKey, frameSize])).toEqual([
+		["all", 1],
+		["apple", 1],
 	]);
 });
 
