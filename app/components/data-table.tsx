@@ -84,7 +84,11 @@ function HeaderCell<Row>({ column, sort }: HeaderCellProps<Row>) {
 			)}
 		>
 			{column.sortable ? (
-				<Link to={`?${next}`} preventScrollReset className="inline-flex min-h-6 items-center gap-1 text-ink">
+				<Link
+					to={`?${next}`}
+					preventScrollReset
+					className="print-plain inline-flex min-h-6 items-center gap-1 text-ink"
+				>
 					{column.header}
 					<span aria-hidden="true" className={sorted ? "text-damson" : "text-field"}>
 						{sorted === "asc" ? "▲" : sorted === "desc" ? "▼" : "↕"}

@@ -2,6 +2,9 @@ import { useTranslation } from "react-i18next";
 import { href, Link } from "react-router";
 import type { Route } from "./+types/overview";
 import { requireAssociate } from "#app/auth/guard.server.ts";
+import { CountQuery } from "#app/collect/desk-lists.schema.ts";
+import { countMailings } from "#app/collect/invitations.server.ts";
+import { listCountyCounts } from "#app/collect/response-counts.server.ts";
 import { listSurveys } from "#app/collect/surveys.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
@@ -10,37 +13,69 @@ import { Section } from "#app/components/section.tsx";
 import { TallyCount } from "#app/components/tally-count.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { listReleaseWork } from "#app/release/release-work.server.ts";
+import { CountyCounts } from "./parts/county-counts.tsx";
+import { TodayList } from "./parts/today-list.tsx";
 
-export async function loader({ context }: Route.LoaderArgs) {
+const closingSoonDays = 7;
+
+export async function loader({ context, request }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
-	const surveys = await desk.transaction((trx) => listSurveys(trx, desk.viewer));
-	return { open: surveys.filter((survey) => survey.state === "open") };
+	const query = CountQuery.parse(Object.fromEntries(new URL(request.url).searchParams));
+	const { viewer } = desk;
+	return desk.transaction(async (trx) => {
+		const surveys = await listSurveys(trx, viewer);
+		const out = surveys.filter((survey) => survey.state === "open");
+		const soon = Date.now() + closingSoonDays * 86_400_000;
+		const open = [];
+		for (const survey of out) {
+			const mailings = await countMailings(trx, viewer, survey.surveyId);
+			open.push({ ...survey, mailings, closesSoon: survey.closesAt.getTime() <= soon });
+		}
+		const counted = open.find((survey) => survey.surveyId === query.survey) ?? open[0];
+		return {
+			open,
+			drafts: surveys.filter((survey) => survey.state === "draft"),
+			releases: await listReleaseWork(trx, viewer),
+			query,
+			counts: counted && {
+				surveyId: counted.surveyId,
+				...(await listCountyCounts(trx, viewer, counted.surveyId, query)),
+			},
+		};
+	});
 }
 
-/** What needs doing today: the surveys that are out, with the answers in so far. */
+/** What needs doing today, then the surveys that are out with the answers in so far, by county. */
 export default function Overview({ loaderData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("desk");
 	const format = useFormat();
+	const { open, counts, query } = loaderData;
 	const start = <ButtonLink to={href("/desk/surveys/new")}>{t("surveys.new")}</ButtonLink>;
 	return (
 		<Page title={t("overview.title")}>
-			{loaderData.open.length === 0 && (
+			<TodayList {...loaderData} />
+			{open.length === 0 && (
 				<EmptyState title={t("overview.emptyTitle")} action={start}>
 					{t("overview.emptyBody")}
 				</EmptyState>
 			)}
-			{loaderData.open.map((survey) => (
+			{open.map((survey) => (
 				<Section
 					key={survey.surveyId}
 					title={t("surveys.name", { title: wordsIn(survey.title, i18n.language), season: survey.season })}
 				>
 					<TallyCount count={survey.answered} of={survey.inFrame} label={t("survey.answersIn")} />
 					<p className="mt-3">{t("overview.closes", { moment: format.moment(survey.closesAt, survey.timeZone) })}</p>
-					<p className="mt-3">
+					<p className="mt-3 flex flex-wrap gap-x-6 gap-y-2">
 						<Link to={href("/desk/surveys/:surveyId", { surveyId: survey.surveyId })}>{t("overview.go")}</Link>
+						<Link to={href("/desk/surveys/:surveyId/responses", { surveyId: survey.surveyId })}>
+							{t("overview.responses")}
+						</Link>
 					</p>
 				</Section>
 			))}
+			{counts && <CountyCounts surveys={open} counts={counts} query={query} />}
 		</Page>
 	);
 }

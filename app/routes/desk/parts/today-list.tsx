@@ -1,0 +1,81 @@
+import { useTranslation } from "react-i18next";
+import { href, Link } from "react-router";
+import { Section } from "#app/components/section.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
+import type { Words } from "#app/lib/words.ts";
+
+type Named = { surveyId: string; season: number; title: Words };
+type OpenSurvey = Named & {
+	closesAt: Date;
+	timeZone: string;
+	closesSoon: boolean;
+	mailings: { toInvite: number; withoutAddress: number };
+};
+type TodayListProps = { open: OpenSurvey[]; drafts: Named[]; releases: (Named & { work: string })[] };
+type Task = { key: string; to: string; text: string };
+
+/** What needs the associate today, each as one sentence that leads to where it is done. */
+export function TodayList(props: TodayListProps) {
+	const { t } = useTranslation("desk");
+	const tasks = useTasks(props);
+	if (tasks.length === 0) return null;
+	return (
+		<Section title={t("overview.todo")}>
+			<ul className="border-t border-rule">
+				{tasks.map(({ key, to, text }) => (
+					<li key={key} className="border-b border-rule">
+						<Link to={to} className="flex min-h-11 items-center gap-3 py-2">
+							<span aria-hidden="true" className="text-quince">
+								◆
+							</span>
+							{text}
+						</Link>
+					</li>
+				))}
+			</ul>
+		</Section>
+	);
+}
+
+const page = ({ surveyId }: Named) => href("/desk/surveys/:surveyId", { surveyId });
+
+function useTasks({ open, drafts, releases }: TodayListProps): Task[] {
+	const { t, i18n } = useTranslation("desk");
+	const format = useFormat();
+	const nameOf = ({ title, season }: Named) => t("surveys.name", { title: wordsIn(title, i18n.language), season });
+	const counted = (key: "invite" | "withoutAddress", survey: Named, count: number) =>
+		t(`overview.task.${key}`, { survey: nameOf(survey), count, value: format.number(count) });
+
+	const ofOpen = open.flatMap((survey): (Task | false)[] => [
+		survey.closesSoon && {
+			key: `closes ${survey.surveyId}`,
+			to: page(survey),
+			text: t("overview.task.closesSoon", {
+				survey: nameOf(survey),
+				moment: format.moment(survey.closesAt, survey.timeZone),
+			}),
+		},
+		survey.mailings.toInvite > 0 && {
+			key: `invite ${survey.surveyId}`,
+			to: page(survey),
+			text: counted("invite", survey, survey.mailings.toInvite),
+		},
+		survey.mailings.withoutAddress > 0 && {
+			key: `address ${survey.surveyId}`,
+			to: `${page(survey)}/responses?show=no_address`,
+			text: counted("withoutAddress", survey, survey.mailings.withoutAddress),
+		},
+	]);
+	const ofDrafts = drafts.map((survey) => ({
+		key: `open ${survey.surveyId}`,
+		to: page(survey),
+		text: t("overview.task.open", { survey: nameOf(survey) }),
+	}));
+	const ofReleases = releases.map((survey) => ({
+		key: `release ${survey.surveyId}`,
+		to: href("/desk/surveys/:surveyId/release", { surveyId: survey.surveyId }),
+		text: t(`overview.task.release.${survey.work}`, { survey: nameOf(survey) }),
+	}));
+	return [...ofOpen.filter((task) => task !== false), ...ofDrafts, ...ofReleases];
+}
