@@ -46,6 +46,11 @@ async function runScript(file, env) {
 
 export const migrate = (env) => step("Migrations", () => runScript("db/migrate.ts", env));
 
+/** The demo's data, a line for each of its parts; the log of the queue's work is not for here. */
+async function fill(env) {
+	await run(tsx, ["db/seed/seed.ts"], { env: { ...env, LOG_LEVEL: "warn" }, streams: true });
+}
+
 const versionOf = () => hashFiles(["db/migrations", "db/migrate.ts", "db/seed", "package-lock.json"]);
 
 /**
@@ -61,7 +66,7 @@ export async function bringUpToDate(cluster, env) {
 	);
 	if (output.trim() === version) return step("Migrations and demo data", () => "up to date");
 	await migrate(env);
-	await step("Demo data", () => runScript("db/seed/seed.ts", env));
+	await step("Demo data", () => fill(env), { streams: true });
 	await asAdmin(cluster, "tallygrove", `comment on database tallygrove is '${version}'`);
 }
 

@@ -1,0 +1,91 @@
+import { momentIn, wallClockOf } from "#app/collect/survey-closing.ts";
+import { offsetFrom, type Place } from "./places.ts";
+
+/** One spring night's damage: worst at its centre and less with distance, along an axis turned `tilt` degrees from east. */
+type Freeze = {
+	longitude: number;
+	latitude: number;
+	/** Share of a tender crop killed at the centre. */
+	worst: number;
+	lengthKm: number;
+	widthKm: number;
+	tilt: number;
+};
+
+export type Season = {
+	season: number;
+	surveyId: string;
+	openedAt: Date;
+	closesAt: Date;
+	/** Null while the survey is open. */
+	closedAt: Date | null;
+	reminders: Date[];
+	freeze: Freeze;
+	/** Share of a normal crop that is lost in any place of this year, freeze or not. */
+	usualLoss: number;
+	/** Days by which harvest was later than usual. */
+	late: number;
+	/** Of everybody asked, how many have answered by the end (or until now). */
+	answering: number;
+};
+
+const zone = "America/Chicago";
+const at = (day: string, clock: string) => momentIn(day, clock, zone)!;
+const days = 86_400_000;
+
+const past: readonly Season[] = [
+	{
+		season: 2024,
+		surveyId: "5ea50000-2024-4000-8000-000000000001",
+		openedAt: at("2024-10-21", "9:05"),
+		closesAt: at("2024-12-13", "17:00"),
+		closedAt: at("2024-12-13", "17:12"),
+		reminders: [at("2024-11-04", "8:40"), at("2024-11-25", "9:20")],
+		freeze: { longitude: -94.6, latitude: 46.4, worst: 0.12, lengthKm: 160, widthKm: 160, tilt: 0 },
+		usualLoss: 0.11,
+		late: 0,
+		answering: 0.61,
+	},
+	{
+		season: 2025,
+		surveyId: "5ea50000-2025-4000-8000-000000000001",
+		openedAt: at("2025-10-20", "9:10"),
+		closesAt: at("2025-12-12", "17:00"),
+		closedAt: at("2025-12-12", "17:08"),
+		reminders: [at("2025-11-03", "8:35"), at("2025-11-24", "9:15")],
+		// Late April: worst from Iowa to southern Wisconsin, milder in northern Illinois and southern Minnesota.
+		freeze: { longitude: -91.9, latitude: 42.2, worst: 0.87, lengthKm: 330, widthKm: 165, tilt: 22 },
+		usualLoss: 0.12,
+		late: 5,
+		answering: 0.61,
+	},
+];
+
+/** The demo's three seasons: two that are over and one that is being asked. */
+export function listSeasons(now: Date): Season[] {
+	const closing = wallClockOf(new Date(now.getTime() + 28 * days), zone).on;
+	return [
+		...past,
+		{
+			season: 2026,
+			surveyId: "5ea50000-2026-4000-8000-000000000001",
+			openedAt: new Date(now.getTime() - 9 * days),
+			closesAt: at(closing, "17:00"),
+			closedAt: null,
+			reminders: [],
+			freeze: { longitude: -88.4, latitude: 44.9, worst: 0.3, lengthKm: 120, widthKm: 120, tilt: 0 },
+			usualLoss: 0.14,
+			late: -3,
+			answering: 0.4,
+		},
+	];
+}
+
+/** Share of a tender crop that the season's freeze killed in a place, 0 to 1. */
+export function freezeAt({ freeze }: Season, place: Place): number {
+	const { east, north } = offsetFrom(freeze, place);
+	const turn = (freeze.tilt * Math.PI) / 180;
+	const along = (east * Math.cos(turn) + north * Math.sin(turn)) / freeze.lengthKm;
+	const across = (north * Math.cos(turn) - east * Math.sin(turn)) / freeze.widthKm;
+	return freeze.worst * Math.exp(-(along ** 2) - across ** 2);
+}
