@@ -1,0 +1,218 @@
+import { CompiledQuery, type Kysely, sql } from "kysely";
+import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { type Scope, setScope } from "#app/auth/scope.server.ts";
+import { connect } from "#db/connect.ts";
+import type { DB } from "#db/schema.ts";
+import { connectOwner } from "#tests/database/surveys-fixture.ts";
+import { createTestDatabase, type TestDatabase } from "#tests/helpers/database.ts";
+import { fillWithHolders, type Holder, type Holders } from "./row-owners.ts";
+
+type Write = "insert" | "update" | "delete";
+/** Whose row it is (the column that tells; a state beside it, where one is kept), and what the application may do to rows that its scope reaches. */
+type Guarded = { key: keyof Holder; state?: "state_fips"; desk: Write[]; grower: Write[] | "nothing" };
+
+const write: Write[] = ["insert", "update"];
+const all: Write[] = ["insert", "update", "delete"];
+
+const guarded: Record<string, Guarded> = {
+	// An owner stands before its first operation, so the desk may write one; growers only see their own.
+	"directory.owner": { key: "owner_id", desk: write, grower: [] },
+	"directory.operation": { key: "operation_id", state: "state_fips", desk: write, grower: write },
+	"directory.planting": { key: "operation_id", desk: write, grower: write },
+	"collect.frame_operation": { key: "operation_id", state: "state_fips", desk: write, grower: write },
+	"collect.frame_crop": { key: "operation_id", desk: write, grower: write },
+	"collect.mailing": { key: "operation_id", desk: write, grower: write },
+	"collect.personal_link": { key: "operation_id", desk: write, grower: write },
+	"collect.response": { key: "operation_id", state: "state_fips", desk: write, grower: write },
+	"collect.answer": { key: "response_id", desk: all, grower: all },
+	"collect.submission": { key: "response_id", desk: ["insert"], grower: ["insert"] },
+	"collect.fact": { key: "operation_id", state: "state_fips", desk: all, grower: all },
+	// A draft covers the network and holds figures of shown cells alone: every desk's, and no grower's.
+	"collect.release_draft": { key: "release_draft_id", desk: write, grower: "nothing" },
+	"collect.release_draft_cell": { key: "release_draft_id", desk: write, grower: "nothing" },
+};
+
+/** Tables of the two schemas that hold no row of a grower. */
+const open: Record<string, string> = {
+	"directory.state": "reference: the states covered",
+	"directory.district": "reference: named groups of counties",
+	"directory.county": "reference: every county",
+	"directory.county_neighbor": "reference: which counties touch",
+	"directory.crop": "reference: the crops",
+	"collect.form": "which forms there are",
+	"collect.form_version": "questions, not answers",
+	"collect.survey": "what is asked, and until when",
+	"collect.survey_state": "which states a survey covers",
+};
+
+const tables = Object.keys(guarded);
+const ofTheNetwork = (table: string) => guarded[table]!.key === "release_draft_id";
+
+let database: TestDatabase;
+let owner: Awaited<ReturnType<typeof connectOwner>>;
+let app: Kysely<DB>;
+let holders: Holders;
+
+beforeAll(async () => {
+	database = await createTestDatabase();
+	owner = await connectOwner(database.ownerUrl);
+	holders = await fillWithHolders(owner);
+	app = connect(database.appUrl, { max: 1 });
+});
+afterAll(async () => {
+	await app.destroy();
+	await owner.end();
+	await database.drop();
+});
+
+/** Tries one statement as the application under a scope (null: none was ever set) and takes it back: rows, or the refusal's code. */
+async function attempt(scope: Scope | null, query: string, values: unknown[], db = app): Promise<number | string> {
+	const trx = await db.startTransaction().execute();
+	try {
+		if (scope) await setScope(trx, scope);
+		const result = await trx.executeQuery(CompiledQuery.raw(query, values));
+		return Number(result.numAffectedRows ?? result.rows.length);
+	} catch (error) {
+		return (error as { code: string }).code;
+	} finally {
+		await trx.rollback().execute();
+	}
+}
+
+const refused = "42501";
+const keyTaken = "23505";
+
+/** What each kind of statement came to, on the row of one holder. The insert is of that very row, so its key is taken. */
+async function attempts(scope: Scope | null, table: string, holder: Holder, db = app) {
+	const { key } = guarded[table]!;
+	const own = [holder[key]];
+	const { rows } = await owner.query(`select to_jsonb(t) as row from ${table} t where ${key} = $1`, own);
+	expect(rows.length, `${table} holds the row`).toBe(1);
+	const copy = `insert into ${table} select * from jsonb_populate_record(null::${table}, $1)`;
+	return {
+		select: await attempt(scope, `select 1 from ${table} where ${key} = $1`, own, db),
+		insert: await attempt(scope, copy, [rows[0].row], db),
+		update: await attempt(scope, `update ${table} set ${key} = ${key} where ${key} = $1`, own, db),
+		delete: await attempt(scope, `delete from ${table} where ${key} = $1`, own, db),
+	};
+}
+
+/** Reachable: seen, and written where granted. The taken key shows that an insert got as far as the table's own rules. */
+function reachable(may: Write[]) {
+	return {
+		select: 1,
+		insert: may.includes("insert") ? keyTaken : refused,
+		update: may.includes("update") ? 1 : refused,
+		delete: may.includes("delete") ? 1 : refused,
+	};
+}
+
+/** Out of reach: not there to see, change or take away, and not to be made. Where no right was granted, refused outright. */
+function outOfReach(table: string) {
+	const { desk } = guarded[table]!;
+	return {
+		select: 0,
+		insert: refused,
+		update: desk.includes("update") ? 0 : refused,
+		delete: desk.includes("delete") ? 0 : refused,
+	};
+}
+
+/** For a desk, a row of another state. An owner's own name may be written by any desk, as it stands before its operations. */
+function beyondTheDesk(table: string) {
+	if (ofTheNetwork(table)) return reachable(guarded[table]!.desk);
+	return table === "directory.owner" ? { ...outOfReach(table), insert: keyTaken } : outOfReach(table);
+}
+
+describe("the catalogue", () => {
+	test("every table of directory and collect is guarded by rows, or holds none of growers", async () => {
+		const { rows } = await owner.query<{ name: string; guarded: boolean }>(
+			`select n.nspname || '.' || c.relname as name, c.relrowsecurity as guarded
+			from pg_class c join pg_namespace n on n.oid = c.relnamespace
+			where n.nspname in ('directory', 'collect') and c.relkind in ('r', 'p') order by 1`,
+		);
+		const names = (held: boolean) => rows.filter((row) => row.guarded === held).map(({ name }) => name);
+		expect(names(true)).toEqual(tables.toSorted());
+		expect(names(false)).toEqual(Object.keys(open).toSorted());
+	});
+
+	test("nothing leads around the rows' guards: no view, no function with its owner's rights, no role above them", async () => {
+		const ours = "('directory', 'collect', 'release', 'publish', 'auth', 'log')";
+		const views = `select relname from pg_class where relkind in ('v', 'm') and relnamespace::regnamespace::text in ${ours}`;
+		const functions = `select proname from pg_proc where prosecdef and pronamespace::regnamespace::text in ${ours}`;
+		const roles = `select rolname from pg_roles where rolname in ('tallygrove_app', 'tallygrove_reader')
+			and (rolsuper or rolbypassrls or rolcreaterole or pg_has_role(rolname, 'tallygrove_owner', 'member'))`;
+		for (const query of [views, functions, roles]) expect((await owner.query(query)).rows).toEqual([]);
+	});
+});
+
+describe.each(tables)("%s", (table) => {
+	const { desk, grower } = guarded[table]!;
+
+	test("is out of reach while no scope was ever set, and under the scope of nothing", async () => {
+		const fresh = connect(database.appUrl, { max: 1 });
+		try {
+			expect(await attempts(null, table, holders.iowa, fresh)).toEqual(outOfReach(table));
+		} finally {
+			await fresh.destroy();
+		}
+		expect(await attempts({ kind: "none" }, table, holders.iowa)).toEqual(outOfReach(table));
+	});
+
+	test("lets the network's own work reach every row", async () => {
+		for (const holder of Object.values(holders)) {
+			expect(await attempts({ kind: "network" }, table, holder)).toEqual(reachable(desk));
+		}
+	});
+
+	test("lets a desk reach the rows of its states and no others", async () => {
+		const iowa: Scope = { kind: "desk", stateFips: ["19"] };
+		expect(await attempts(iowa, table, holders.iowa)).toEqual(reachable(desk));
+		expect(await attempts(iowa, table, holders.neighbor)).toEqual(reachable(desk));
+		expect(await attempts(iowa, table, holders.wisconsin)).toEqual(beyondTheDesk(table));
+		expect(await attempts({ kind: "desk", stateFips: [] }, table, holders.iowa)).toEqual(beyondTheDesk(table));
+	});
+
+	test("lets a grower reach the rows of their own operations and no others", async () => {
+		const own: Scope = { kind: "grower", operationIds: [holders.iowa.operation_id] };
+		const expected = grower === "nothing" ? outOfReach(table) : reachable(grower);
+		expect(await attempts(own, table, holders.iowa)).toEqual(expected);
+		expect(await attempts(own, table, holders.neighbor)).toEqual(outOfReach(table));
+		expect(await attempts(own, table, holders.wisconsin)).toEqual(outOfReach(table));
+		expect(await attempts({ kind: "grower", operationIds: [] }, table, holders.iowa)).toEqual(outOfReach(table));
+	});
+});
+
+test.each(tables.filter((table) => !ofTheNetwork(table)))(
+	"a row of %s cannot be handed to whom the scope does not reach",
+	async (table) => {
+		const { key, state } = guarded[table]!;
+		const hand = (scope: Scope, column: string, to: unknown) =>
+			attempt(scope, `update ${table} set ${column} = $2 where ${key} = $1`, [holders.iowa[key], to]);
+		const desk: Scope = { kind: "desk", stateFips: ["19"] };
+		expect(await hand(desk, state ?? key, state ? "55" : holders.wisconsin[key])).toBe(refused);
+		const grower: Scope = { kind: "grower", operationIds: [holders.iowa.operation_id] };
+		expect(await hand(grower, key, holders.neighbor[key])).toBe(refused);
+	},
+);
+
+test("a scope ends with its transaction, kept or taken back, on the one connection of the pool", async () => {
+	const seen = sql<{ pid: number; rows: number; scope: string }>`select pg_backend_pid() as pid,
+		(select count(*)::int from directory.operation) as rows, auth.scope() as scope`;
+	const withScope = await app.transaction().execute(async (trx) => {
+		await setScope(trx, { kind: "network" });
+		return (await seen.execute(trx)).rows[0]!;
+	});
+	expect(withScope).toMatchObject({ rows: 3, scope: "network" });
+	const after = { pid: withScope.pid, rows: 0, scope: "" };
+	expect((await seen.execute(app)).rows).toEqual([after]);
+
+	const failing = app.transaction().execute(async (trx) => {
+		await setScope(trx, { kind: "desk", stateFips: ["19"] });
+		expect((await seen.execute(trx)).rows[0]).toMatchObject({ pid: withScope.pid, rows: 2, scope: "desk" });
+		await sql`select 1 / 0`.execute(trx);
+	});
+	await expect(failing).rejects.toMatchObject({ code: "22012" });
+	expect((await seen.execute(app)).rows).toEqual([after]);
+	await app.transaction().execute(async (trx) => expect((await seen.execute(trx)).rows).toEqual([after]));
+});

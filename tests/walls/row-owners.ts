@@ -1,0 +1,82 @@
+import type { Client } from "pg";
+import { addOperation, addPerson, loadPlaces } from "#tests/database/surveys-fixture.ts";
+
+/** One operation and the keys by which its rows are found in every table that holds some. */
+export type Holder = { operation_id: string; owner_id: string; response_id: string; release_draft_id: string };
+export type Holders = { iowa: Holder; neighbor: Holder; wisconsin: Holder };
+
+/**
+ * Three operations, two of Iowa and one of Wisconsin, in one survey of both states, each with a row in every table that
+ * holds rows of growers. Written as owner, so all is really there, whatever a scope sees of it.
+ */
+export async function fillWithHolders(owner: Client): Promise<Holders> {
+	await loadPlaces(owner);
+	const { personId } = await addPerson(owner, "Ines Rowan", ["19"]);
+	const surveyId = await addSurvey(owner);
+	const draftId = await idOf(
+		owner,
+		"insert into collect.release_draft (survey_id, rules, drafted_by) values ($1, '{}', $2) returning release_draft_id as id",
+		[surveyId, personId],
+	);
+	await owner.query(
+		"insert into collect.release_draft_cell (release_draft_id, crop_key, area_key, status) values ($1, 'apple', '19103', 'withheld')",
+		[draftId],
+	);
+	const add = async (state: "19" | "55") => addHolder(owner, surveyId, draftId, state);
+	return { iowa: await add("19"), neighbor: await add("19"), wisconsin: await add("55") };
+}
+
+async function addSurvey(owner: Client): Promise<string> {
+	return idOf(
+		owner,
+		`with f as (insert into collect.form (form_key) values ('walls') returning form_id),
+			v as (insert into collect.form_version (form_id, version, definition) select form_id, 1, '{}' from f returning form_version_id),
+			s as (insert into collect.survey (form_version_id, season, title, crop_keys, closes_at, opened_at)
+				select form_version_id, 2031, '{}', '{apple}', now() + interval '1 day', now() from v returning survey_id)
+		insert into collect.survey_state select survey_id, state from s, unnest(array['19', '55']) state returning survey_id as id`,
+	);
+}
+
+async function addHolder(owner: Client, surveyId: string, draftId: string, state: "19" | "55"): Promise<Holder> {
+	const operationId = await addOperation(owner, { state });
+	const ownerId = await idOf(owner, "select owner_id as id from directory.operation where operation_id = $1", [
+		operationId,
+	]);
+	await owner.query(
+		`insert into collect.frame_operation (survey_id, operation_id, owner_id, county_fips, state_fips, size_class, stratum_key)
+		select $1, operation_id, owner_id, county_fips, state_fips, 'small', state_fips || ':small'
+		from directory.operation where operation_id = $2`,
+		[surveyId, operationId],
+	);
+	const ids = [surveyId, operationId];
+	await owner.query("insert into collect.frame_crop values ($1, $2, 'apple', 40)", ids);
+	await owner.query("insert into collect.mailing (survey_id, operation_id, kind) values ($1, $2, 'invitation')", ids);
+	await owner.query(
+		"insert into collect.personal_link (survey_id, operation_id, token_hash, expires_at) values ($1, $2, gen_random_uuid()::text, now())",
+		ids,
+	);
+	await owner.query(
+		`insert into collect.fact select survey_id, 'crop_loss', 'apple', operation_id, owner_id, county_fips, state_fips,
+			stratum_key, 120, 400 from collect.frame_operation where survey_id = $1 and operation_id = $2`,
+		ids,
+	);
+	const responseId = await idOf(
+		owner,
+		`insert into collect.response (survey_id, operation_id, state_fips, language, pledge_version)
+		values ($1, $2, $3, 'en', '1') returning response_id as id`,
+		[...ids, state],
+	);
+	await owner.query(
+		"insert into collect.answer (response_id, question_key, kind, value) values ($1, 'harvested', 'given', '280')",
+		[responseId],
+	);
+	await owner.query("insert into collect.submission (response_id, version, answers) values ($1, 1, '{}')", [
+		responseId,
+	]);
+	return { operation_id: operationId, owner_id: ownerId, response_id: responseId, release_draft_id: draftId };
+}
+
+async function idOf(owner: Client, query: string, values: unknown[] = []): Promise<string> {
+	const { rows } = await owner.query<{ id: string }>(query, values);
+	return rows[0]!.id;
+}
