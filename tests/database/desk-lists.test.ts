@@ -1,7 +1,8 @@
 import type { Client } from "pg";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
-import { CountQuery } from "#app/collect/desk-lists.schema.ts";
+import { CountQuery, FrameQuery } from "#app/collect/desk-lists.schema.ts";
+import { listFrame } from "#app/collect/frame-list.server.ts";
 import { listCountyCounts } from "#app/collect/response-counts.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
@@ -129,4 +130,101 @@ test("a closed survey waits for its release until one is approved, and only in i
 	expect(await count(owner, "collect.release_draft where survey_id = $1", [surveyId])).toBe(2);
 	await draft("approved", '{"passed": true}');
 	expect(await work(iowa)).toBeUndefined();
+});
+
+const frame = (viewer: Associate, surveyId: string, query: Record<string, unknown> = {}) =>
+	asDesk(viewer, (trx) => listFrame(trx, viewer, surveyId, FrameQuery.parse(query)));
+type Mailed = {
+	operationId: string;
+	kind?: string;
+	wave?: number;
+	minutesAgo: number;
+	sent?: boolean;
+	failure?: string;
+};
+const mail = (surveyId: string, { operationId, kind = "invitation", wave = 1, minutesAgo, sent, failure }: Mailed) =>
+	owner.query(
+		`insert into collect.mailing (survey_id, operation_id, kind, wave, queued_at, sent_at, failed_at, failure)
+		values ($1, $2, $3, $4, now() - $5 * interval '1 minute', case when $6 then now() end, case when $7::text is not null then now() end, $7)`,
+		[surveyId, operationId, kind, wave, minutesAgo, sent ?? false, failure ?? null],
+	);
+
+describe("the list of who is asked", () => {
+	test("shows granted states only, with what came back and what was mailed", async () => {
+		const { surveyId, ids } = await surveyOf([
+			{ state: "19", name: "Quail Bend Orchard" },
+			{ state: "19", name: "Otter Slough Fruit" },
+			{ state: "55", name: "Stony Ford Farm" },
+		]);
+		await answerFor(owner, surveyId, ids[0]!);
+		await mail(surveyId, { operationId: ids[0]!, minutesAgo: 9, sent: true });
+		await mail(surveyId, { operationId: ids[0]!, kind: "reminder", minutesAgo: 5 });
+		await mail(surveyId, { operationId: ids[0]!, wave: 2, minutesAgo: 2, failure: "answered" });
+
+		const { rows, total } = await frame(iowa, surveyId);
+		expect(total).toBe(2);
+		expect(rows.map((row) => [row.name, row.disposition, row.submittedAt !== null])).toEqual([
+			["Otter Slough Fruit", "not_reached", false],
+			["Quail Bend Orchard", "complete", true],
+		]);
+		expect(rows[0]?.mails).toEqual([]);
+		expect(rows[1]?.mails.map(({ kind, sentAt, failure }) => [kind, sentAt !== null, failure])).toEqual([
+			["invitation", true, null],
+			["reminder", false, null],
+			["new_link", false, "answered"],
+		]);
+		expect(await count(owner, "collect.frame_operation where survey_id = $1", [surveyId])).toBe(3);
+	});
+
+	test("narrows by what came back and by name, to exactly these growers", async () => {
+		const { surveyId, ids } = await surveyOf([
+			{ state: "19", name: "A answered" },
+			{ state: "19", name: "B begun" },
+			{ state: "19", name: "C came back" },
+			{ state: "19", name: "D mended since" },
+			{ state: "19", name: "E without address", email: null, contact: "100% Wren" },
+			{ state: "19", name: "F answered without address", email: "" },
+		]);
+		const [a, b, c, d, , f] = ids as [string, string, string, string, string, string];
+		await answerFor(owner, surveyId, a);
+		await answerFor(owner, surveyId, f);
+		await owner.query(
+			`insert into collect.response (survey_id, operation_id, state_fips, language, pledge_version)
+			values ($1, $2, '19', 'en', '1')`,
+			[surveyId, b],
+		);
+		await mail(surveyId, { operationId: c, minutesAgo: 9, failure: "returned" });
+		await mail(surveyId, { operationId: d, minutesAgo: 9, failure: "returned" });
+		await mail(surveyId, { operationId: d, wave: 2, minutesAgo: 2, sent: true });
+		const names = async (query: Record<string, unknown>) =>
+			(await frame(iowa, surveyId, query)).rows.map((row) => row.name[0]).join("");
+		expect(await names({})).toBe("ABCDEF");
+		expect(await names({ show: "answered" })).toBe("AF");
+		expect(await names({ show: "not_answered" })).toBe("BCDE");
+		expect(await names({ show: "mail_returned" })).toBe("C");
+		expect(await names({ show: "no_address" })).toBe("E");
+		expect(await names({ q: "ANSWERED" })).toBe("AF");
+		expect(await names({ q: "100% w" })).toBe("E");
+		expect(await names({ q: "%" })).toBe("E");
+		expect(await names({ q: "mended", show: "answered" })).toBe("");
+		expect(await names({ show: "drop table" })).toBe("ABCDEF");
+	});
+
+	test("sorts unanswered last either way, and pages without losing or doubling anyone", async () => {
+		const same = Array.from({ length: 120 }, (): NewOperation => ({ state: "19", name: "Same name" }));
+		const { surveyId, ids } = await surveyOf(same);
+		await answerFor(owner, surveyId, ids[7]!);
+		for (const query of [{}, { sort: "answered" }, { sort: "disposition", direction: "desc" }, { sort: "county" }]) {
+			const pages = [];
+			for (const page of [1, 2, 3]) pages.push(await frame(iowa, surveyId, { ...query, page }));
+			expect(pages.map((page) => page.rows.length)).toEqual([50, 50, 20]);
+			expect(new Set(pages.flatMap((page) => page.rows.map((row) => row.operationId)))).toEqual(new Set(ids));
+		}
+		for (const direction of ["asc", "desc"]) {
+			const { rows } = await frame(iowa, surveyId, { sort: "answered", direction });
+			expect(rows[0]?.operationId).toBe(ids[7]);
+		}
+		expect((await frame(iowa, surveyId, { page: 99 })).page).toBe(3);
+		expect((await frame(iowa, surveyId, { all: "1" })).rows).toHaveLength(120);
+	});
 });

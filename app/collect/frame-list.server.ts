@@ -1,0 +1,103 @@
+import { sql } from "kysely";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
+import type { FrameQuery } from "./desk-lists.schema.ts";
+import { listMails, type Mail } from "./mail-list.server.ts";
+
+const pageSize = 50;
+/** All on one page is for paper; no state's frame is larger. */
+const largestPage = 5_000;
+
+export type Disposition = "complete" | "partial" | "refused" | "not_reached" | "undeliverable" | "not_eligible";
+export type FrameRow = {
+	operationId: string;
+	name: string;
+	contactName: string;
+	phone: string | null;
+	email: string | null;
+	countyName: string;
+	statePostal: string;
+	disposition: Disposition;
+	/** Set once the grower has begun, sent in or not. */
+	responseId: string | null;
+	submittedAt: Date | null;
+	/** What was mailed to it for this survey, oldest first. */
+	mails: Mail[];
+};
+
+/** The one place that says whose rows of a survey's frame an associate can see. */
+function selectFrame(trx: Trx, viewer: Associate, surveyId: string) {
+	return trx
+		.selectFrom("collect.frame_operation as f")
+		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
+		.innerJoin("directory.county as c", "c.county_fips", "f.county_fips")
+		.innerJoin("directory.state as s", "s.state_fips", "f.state_fips")
+		.leftJoin("collect.response as r", (join) =>
+			join.onRef("r.survey_id", "=", "f.survey_id").onRef("r.operation_id", "=", "f.operation_id"),
+		)
+		.where("f.survey_id", "=", surveyId)
+		.where("f.state_fips", "in", viewer.stateFips);
+}
+
+/** A page of a survey's growers. Equal sort values are ordered by id, so that no row shows twice or never while paging. */
+export async function listFrame(trx: Trx, viewer: Associate, surveyId: string, query: FrameQuery) {
+	const matching = matchingFrame(trx, viewer, surveyId, query);
+	const { total } = await matching.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
+	const size = query.all ? largestPage : pageSize;
+	const pageCount = Math.max(1, Math.ceil(total / size));
+	const page = Math.min(query.page, pageCount);
+	const rows = await matching
+		.select([
+			"f.operation_id as operationId",
+			"o.name",
+			"o.contact_name as contactName",
+			"o.phone",
+			"o.email",
+			"c.name as countyName",
+			"s.postal as statePostal",
+			"f.disposition",
+			"r.response_id as responseId",
+			"r.submitted_at as submittedAt",
+		])
+		.orderBy(sortColumn[query.sort], (order) => order[query.direction]().nullsLast())
+		.orderBy("f.operation_id")
+		.limit(size)
+		.offset((page - 1) * size)
+		.execute();
+	// Mails are looked up for the rows shown: joined above, they would be for every grower of the frame.
+	const mails = await listMails(
+		trx,
+		surveyId,
+		rows.map((row) => row.operationId),
+	);
+	return { rows: rows.map((row) => toRow(row, mails.get(row.operationId))), total, page, pageCount };
+}
+
+const sortColumn = {
+	name: sql.ref("o.name"),
+	county: sql.ref("c.name"),
+	// From done to out of reach, as one works through the list.
+	disposition: sql`array_position(array['complete', 'partial', 'not_reached', 'undeliverable', 'refused', 'not_eligible'],
+		f.disposition)`,
+	answered: sql.ref("r.submitted_at"),
+};
+
+function matchingFrame(trx: Trx, viewer: Associate, surveyId: string, { q, show }: FrameQuery) {
+	const pattern = `%${q.replace(/[\\%_]/g, String.raw`\$&`)}%`;
+	return selectFrame(trx, viewer, surveyId)
+		.$if(q !== "", (rows) =>
+			rows.where((eb) => eb.or([eb("o.name", "ilike", pattern), eb("o.contact_name", "ilike", pattern)])),
+		)
+		.$if(show === "answered", (rows) => rows.where("r.submitted_at", "is not", null))
+		.$if(show === "not_answered" || show === "no_address", (rows) => rows.where("r.submitted_at", "is", null))
+		.$if(show === "no_address", (rows) => rows.where(sql<boolean>`coalesce(o.email, '') = ''`))
+		.$if(show === "mail_returned", (rows) =>
+			rows.where(sql<boolean>`(select m.failure from collect.mailing m
+			where m.survey_id = f.survey_id and m.operation_id = f.operation_id
+			order by m.queued_at desc, m.mailing_id desc limit 1) = 'returned'`),
+		);
+}
+
+function toRow<T extends { disposition: string }>(row: T, mails: Mail[] = []) {
+	return { ...row, disposition: row.disposition as Disposition, mails };
+}
