@@ -109,6 +109,16 @@ export const exceptions: { from: string; to: string; because: string }[] = [
 		because: "mail is queued in the transaction that decides it",
 	},
 	{
+		from: "app/collect/submission.server.ts",
+		to: "app/jobs/queue.server.ts",
+		because: "the receipt's mail is queued in the transaction that sends the answers in",
+	},
+	{
+		from: "app/collect/submission.server.ts",
+		to: "app/tally/facts.server.ts",
+		because: "a submission writes its facts in its own transaction: neither is ever there without the other",
+	},
+	{
 		from: "app/jobs/worker.ts",
 		to: "app/jobs/tasks.server.ts",
 		because: "a program of its own, which no page imports",

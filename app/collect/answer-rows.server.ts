@@ -1,0 +1,115 @@
+import { isDeepStrictEqual } from "node:util";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Answer } from "./form.ts";
+import { answersByPlace, placeOf, type PlantingAsked } from "./steps.ts";
+
+/** What was sent in once: the answers that were kept, and which plantings they are about. Never changed afterwards. */
+export type Submission = { plantings: { plantingId: string; cropKey: string }[]; answers: Answer[] };
+
+export async function listAnswers(trx: Trx, responseId: string): Promise<Answer[]> {
+	const rows = await trx
+		.selectFrom("collect.answer")
+		.select(["question_key", "planting_id", "kind", "value", "given"])
+		.where("response_id", "=", responseId)
+		.orderBy("question_key")
+		.orderBy("planting_id")
+		.execute();
+	return rows.map((row) => ({
+		questionKey: row.question_key,
+		plantingId: row.planting_id,
+		kind: row.kind as Answer["kind"],
+		value: row.value as Answer["value"],
+		given: row.given as Answer["given"],
+	}));
+}
+
+/**
+ * Puts `next` in the place of `held`; an answer that stays the same keeps its row and the time it was given.
+ * @returns whether anything changed.
+ */
+export async function replaceAnswers(trx: Trx, responseId: string, held: Answer[], next: Answer[]): Promise<boolean> {
+	const before = answersByPlace(held);
+	const after = answersByPlace(next);
+	const differs = ({ questionKey, plantingId }: Answer) => {
+		const at = placeOf(questionKey, plantingId);
+		return !isDeepStrictEqual(before.get(at), after.get(at));
+	};
+	const outdated = held.filter(differs);
+	const changed = next.filter(differs);
+	for (const { questionKey, plantingId } of outdated) {
+		await trx
+			.deleteFrom("collect.answer")
+			.where("response_id", "=", responseId)
+			.where("question_key", "=", questionKey)
+			.where("planting_id", "is not distinct from", plantingId)
+			.execute();
+	}
+	if (changed.length > 0) {
+		await trx
+			.insertInto("collect.answer")
+			.values(
+				changed.map((answer) => ({
+					response_id: responseId,
+					question_key: answer.questionKey,
+					planting_id: answer.plantingId,
+					kind: answer.kind,
+					value: answer.value === null ? null : JSON.stringify(answer.value),
+					given: answer.given === null ? null : JSON.stringify(answer.given),
+				})),
+			)
+			.execute();
+	}
+	return outdated.length + changed.length > 0;
+}
+
+/** Whether two lists hold the same answers, in whichever order. */
+export function sameAnswers(one: Answer[], other: Answer[]): boolean {
+	return isDeepStrictEqual(answersByPlace(one), answersByPlace(other));
+}
+
+export async function findNewestSubmission(trx: Trx, responseId: string): Promise<Submission | undefined> {
+	const row = await trx
+		.selectFrom("collect.submission")
+		.select("answers")
+		.where("response_id", "=", responseId)
+		.orderBy("version", "desc")
+		.limit(1)
+		.executeTakeFirst();
+	return row && (row.answers as Submission);
+}
+
+/**
+ * What an operation is asked about: its standing plantings of the crops with which it stands in the survey's frame, and
+ * those taken out since it answered about them. A crop planted after the frame was frozen has no place in its strata.
+ */
+export async function listPlantingsAsked(
+	trx: Trx,
+	{ surveyId, operationId }: { surveyId: string; operationId: string },
+	answers: Answer[],
+): Promise<PlantingAsked[]> {
+	const answered = new Set(answers.map(({ plantingId }) => plantingId));
+	const rows = await trx
+		.selectFrom("directory.planting as p")
+		.innerJoin("directory.crop as c", "c.crop_key", "p.crop_key")
+		.innerJoin("collect.frame_crop as f", (join) =>
+			join.onRef("f.operation_id", "=", "p.operation_id").onRef("f.crop_key", "=", "p.crop_key"),
+		)
+		.where("p.operation_id", "=", operationId)
+		.where("f.survey_id", "=", surveyId)
+		.orderBy("c.position")
+		.orderBy("p.cultivar")
+		.orderBy("p.planting_id")
+		.select(["p.planting_id", "p.crop_key", "p.cultivar", "p.bearing_trees", "p.removed_on"])
+		.select(["c.plant_kind", "c.bushel_lb"])
+		.execute();
+	return rows
+		.filter((row) => row.removed_on === null || answered.has(row.planting_id))
+		.map((row) => ({
+			plantingId: row.planting_id,
+			cropKey: row.crop_key,
+			cultivar: row.cultivar,
+			bearingTrees: row.bearing_trees,
+			plantKind: row.plant_kind === "bush" ? "bush" : "tree",
+			bushelLb: row.bushel_lb,
+		}));
+}

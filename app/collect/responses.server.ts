@@ -1,0 +1,168 @@
+import { sql } from "kysely";
+import { logEvent } from "#app/auth/event-log.server.ts";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Grower } from "#app/auth/viewer.ts";
+import type { Words } from "#app/lib/words.ts";
+import { type AnswerPlace, findPlace, holdOpenSurvey } from "./answer-place.server.ts";
+import {
+	findNewestSubmission,
+	listAnswers,
+	listPlantingsAsked,
+	replaceAnswers,
+	sameAnswers,
+} from "./answer-rows.server.ts";
+import { type Answer, FormDefinition } from "./form.ts";
+import { keptAnswers, listAsked, type PlantingAsked } from "./steps.ts";
+import type { MassUnit } from "./units.ts";
+
+export type { AnswerPlace };
+export type Answering = {
+	surveyId: string;
+	operationId: string;
+	operationName: string;
+	/** County and state are those of the frozen frame, under which the answers count. */
+	countyName: string;
+	stateFips: string;
+	timeZone: string;
+	season: number;
+	title: Words;
+	definition: FormDefinition;
+	opensAt: Date;
+	closesAt: Date;
+	isOpen: boolean;
+	massUnit: MassUnit;
+	/** The operation's own, for a visitor who has not chosen one. */
+	language: "en" | "es";
+	plantings: PlantingAsked[];
+	response: ResponseSoFar | null;
+	answers: Answer[];
+};
+export type ResponseSoFar = {
+	responseId: string;
+	pledgeVersion: string;
+	draftVersion: number;
+	submittedVersion: number;
+	receiptCode: string | null;
+	submittedAt: Date | null;
+	/** Whether what would be sent in now differs from what was sent in last. */
+	changedSinceSubmission: boolean;
+};
+
+/**
+ * What an operation is asked in a survey and what it has answered so far.
+ * @returns undefined when the operation is not the viewer's or not in the survey's frame, the survey was never opened, or
+ *   a personal link is for another survey or operation.
+ */
+export async function findAnswering(trx: Trx, viewer: Grower, place: AnswerPlace): Promise<Answering | undefined> {
+	const row = await findPlace(trx, viewer, place);
+	if (!row) return undefined;
+	const definition = FormDefinition.parse(row.definition);
+	const answers = row.response ? await listAnswers(trx, row.response.responseId) : [];
+	const plantings = await listPlantingsAsked(trx, place, answers);
+	const newest = row.response ? await findNewestSubmission(trx, row.response.responseId) : undefined;
+	const changed = newest !== undefined && !sameAnswers(newest.answers, keptAnswers(definition, plantings, answers));
+	return {
+		...row,
+		surveyId: place.surveyId,
+		operationId: place.operationId,
+		definition,
+		plantings,
+		response: row.response && { ...row.response, changedSinceSubmission: changed },
+		answers,
+	};
+}
+
+/**
+ * Takes an open survey's response for writing until the transaction ends, and reads it as it then stands: two taps at
+ * once meet here, and the second sees what the first did.
+ */
+export async function lockAnswering(trx: Trx, viewer: Grower, place: AnswerPlace) {
+	const held = await holdOpenSurvey(trx, viewer, place);
+	if (typeof held === "string") return held;
+	await trx
+		.selectFrom("collect.response")
+		.select("response_id")
+		.where("survey_id", "=", place.surveyId)
+		.where("operation_id", "=", place.operationId)
+		.forUpdate()
+		.execute();
+	const answering = await findAnswering(trx, viewer, place);
+	if (!answering?.isOpen) return "closed" as const;
+	return answering.response ? { ...answering, response: answering.response } : ("not_started" as const);
+}
+
+/** Agrees to the pledge and begins. Again changes nothing: the promise of the first time is the one that holds. */
+export async function startResponse(
+	trx: Trx,
+	viewer: Grower,
+	place: AnswerPlace,
+	{ language, pledgeVersion }: { language: "en" | "es"; pledgeVersion: string },
+): Promise<"started" | "already_started" | "not_found" | "closed"> {
+	const held = await holdOpenSurvey(trx, viewer, place);
+	if (typeof held === "string") return held;
+	const { surveyId, operationId } = place;
+	const begun = await trx
+		.insertInto("collect.response")
+		.values({
+			survey_id: surveyId,
+			operation_id: operationId,
+			state_fips: held.stateFips,
+			language,
+			pledge_version: pledgeVersion,
+		})
+		.onConflict((conflict) => conflict.constraint("response_once").doNothing())
+		.returning("response_id")
+		.executeTakeFirst();
+	if (!begun) return "already_started";
+	await trx
+		.updateTable("collect.frame_operation")
+		.set({ disposition: "partial", disposition_at: sql`now()` })
+		.where("survey_id", "=", surveyId)
+		.where("operation_id", "=", operationId)
+		.where("disposition", "in", ["not_reached", "undeliverable"])
+		.execute();
+	await logEvent(trx, {
+		personId: viewer.person?.personId ?? null,
+		action: "response.started",
+		subjectKind: "response",
+		subjectId: begun.response_id,
+		stateFips: held.stateFips,
+		detail: { surveyId, operationId, pledgeVersion, byLink: viewer.link !== null },
+	});
+	return "started";
+}
+
+/**
+ * Keeps a step's answers in place of those it held, also of questions that its own answers now rule out: they may come
+ * back. The same answers again change nothing.
+ * @param stepKey a step that is asked now; answers of another step are refused like an unknown step.
+ */
+export async function saveStep(
+	trx: Trx,
+	viewer: Grower,
+	place: AnswerPlace,
+	stepKey: string,
+	answers: Answer[],
+): Promise<"saved" | "unchanged" | "not_found" | "closed" | "not_started" | "step_not_found"> {
+	const answering = await lockAnswering(trx, viewer, place);
+	if (typeof answering === "string") return answering;
+	const { definition, plantings, response } = answering;
+	const asked = listAsked(definition, plantings, answering.answers).find(({ step }) => step.key === stepKey);
+	if (!asked) return "step_not_found";
+	const plantingId = asked.step.planting?.plantingId ?? null;
+	const ofScreen = new Set(asked.step.screen.questions.map(({ key }) => key));
+	if (answers.some((answer) => answer.plantingId !== plantingId || !ofScreen.has(answer.questionKey)))
+		return "step_not_found";
+
+	const replaced = new Set([...asked.questions.map(({ key }) => key), ...answers.map((answer) => answer.questionKey)]);
+	const held = answering.answers.filter(
+		(answer) => answer.plantingId === plantingId && replaced.has(answer.questionKey),
+	);
+	if (!(await replaceAnswers(trx, response.responseId, held, answers))) return "unchanged";
+	await trx
+		.updateTable("collect.response")
+		.set({ draft_version: response.draftVersion + 1 })
+		.where("response_id", "=", response.responseId)
+		.execute();
+	return "saved";
+}

@@ -1,0 +1,124 @@
+import { randomInt } from "node:crypto";
+import { sql } from "kysely";
+import { logEvent } from "#app/auth/event-log.server.ts";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Grower } from "#app/auth/viewer.ts";
+import { queueJob } from "#app/jobs/queue.server.ts";
+import { writeFacts } from "#app/tally/facts.server.ts";
+import { findNewestSubmission, sameAnswers, type Submission } from "./answer-rows.server.ts";
+import type { Answer } from "./form.ts";
+import { type AnswerPlace, lockAnswering } from "./responses.server.ts";
+import { answersByPlace, keptAnswers, listAsked, placeOf } from "./steps.ts";
+
+export type Submitted =
+	| { outcome: "submitted" | "unchanged"; receiptCode: string; version: number }
+	/** Steps that still lack an answer to a required question, in the order of the form. */
+	| { outcome: "unfinished"; stepKeys: string[] }
+	| "not_found"
+	| "closed"
+	| "not_started";
+type Locked = Exclude<Awaited<ReturnType<typeof lockAnswering>>, string>;
+
+/**
+ * Sends an operation's answers in, for the first time or amended. Snapshot, receipt, disposition, facts and the receipt's
+ * mail come about together or not at all. What has not changed since it was last sent in gets the same receipt, so that a
+ * double tap, a retry and a second tab are harmless.
+ */
+export async function submitResponse(
+	trx: Trx,
+	viewer: Grower,
+	place: AnswerPlace,
+	language: "en" | "es",
+): Promise<Submitted> {
+	const answering = await lockAnswering(trx, viewer, place);
+	if (typeof answering === "string") return answering;
+	const { definition, plantings, response } = answering;
+	const answers = keptAnswers(definition, plantings, answering.answers);
+	const newest = await findNewestSubmission(trx, response.responseId);
+	if (newest && response.receiptCode !== null && sameAnswers(newest.answers, answers))
+		return { outcome: "unchanged", receiptCode: response.receiptCode, version: response.submittedVersion };
+	const stepKeys = stepsUnanswered(answering, answers);
+	if (stepKeys.length > 0) return { outcome: "unfinished", stepKeys };
+
+	const version = response.submittedVersion + 1;
+	const receiptCode = response.receiptCode ?? newReceiptCode();
+	await keepSubmission(trx, answering, answers, { version, receiptCode, language });
+	await trx
+		.updateTable("collect.frame_operation")
+		.set({ disposition: "complete", disposition_at: sql`now()` })
+		.where("survey_id", "=", place.surveyId)
+		.where("operation_id", "=", place.operationId)
+		.where("disposition", "!=", "complete")
+		.execute();
+	await writeFacts(trx, response.responseId);
+	await queueReceipt(trx, viewer, place, version);
+	await logEvent(trx, {
+		personId: viewer.person?.personId ?? null,
+		action: version === 1 ? "response.submitted" : "response.amended",
+		subjectKind: "response",
+		subjectId: response.responseId,
+		stateFips: answering.stateFips,
+		detail: { surveyId: place.surveyId, operationId: place.operationId, version, byLink: viewer.link !== null },
+	});
+	return { outcome: "submitted", receiptCode, version };
+}
+
+function stepsUnanswered({ definition, plantings, answers: all }: Locked, kept: Answer[]): string[] {
+	const answered = answersByPlace(kept);
+	return listAsked(definition, plantings, all)
+		.filter(({ step, questions }) =>
+			questions.some(({ key, required }) => required && !answered.has(placeOf(key, step.planting?.plantingId ?? null))),
+		)
+		.map(({ step }) => step.key);
+}
+
+async function keepSubmission(
+	trx: Trx,
+	{ plantings, response: { responseId } }: Locked,
+	answers: Answer[],
+	{ version, receiptCode, language }: { version: number; receiptCode: string; language: "en" | "es" },
+): Promise<void> {
+	const submission: Submission = {
+		plantings: plantings.map(({ plantingId, cropKey }) => ({ plantingId, cropKey })),
+		answers,
+	};
+	await trx
+		.insertInto("collect.submission")
+		.values({ response_id: responseId, version, answers: JSON.stringify(submission) })
+		.execute();
+	await trx
+		.updateTable("collect.response")
+		.set({
+			submitted_version: version,
+			receipt_code: receiptCode,
+			first_submitted_at: sql`coalesce(first_submitted_at, now())`,
+			submitted_at: sql`now()`,
+			language,
+		})
+		.where("response_id", "=", responseId)
+		.execute();
+}
+
+async function queueReceipt(trx: Trx, viewer: Grower, place: AnswerPlace, version: number): Promise<void> {
+	const { mailing_id: mailingId } = await trx
+		.insertInto("collect.mailing")
+		.values({
+			survey_id: place.surveyId,
+			operation_id: place.operationId,
+			kind: "receipt",
+			wave: version,
+			queued_by: viewer.person?.personId ?? null,
+		})
+		.returning("mailing_id")
+		.executeTakeFirstOrThrow();
+	await queueJob(trx, "send_mail", { mailingId }, { jobKey: `send_mail:${mailingId}` });
+}
+
+/** Without what is misread on paper or over the telephone: 0 O Q, 1 I L, 5 S, 8 B, 2 Z, U V. */
+const receiptAlphabet = "34679ACDEFGHJKMNPRTWXY";
+
+/** A receipt's code as it is shown, like "KD7M-3XRA". It names a response to people; it opens nothing. */
+function newReceiptCode(): string {
+	const signs = Array.from({ length: 8 }, () => receiptAlphabet.charAt(randomInt(receiptAlphabet.length)));
+	return `${signs.slice(0, 4).join("")}-${signs.slice(4).join("")}`;
+}
