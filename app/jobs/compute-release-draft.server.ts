@@ -27,13 +27,13 @@ type Inputs = {
 /**
  * Makes a draft's cells: tally, estimate, protect, audit. Reading and writing are two short transactions, with the long
  * computation between them; a draft that was superseded meanwhile is left as it is.
+ * @param transact runs both; the demo's data passes one that stays in a transaction of its own.
  */
-export async function computeReleaseDraft({ releaseDraftId }: { releaseDraftId: string }): Promise<void> {
-	const inputs = await scopedTransaction(
-		{ kind: "network" },
-		(trx) => readInputs(trx, releaseDraftId),
-		"repeatable read",
-	);
+export async function computeReleaseDraft(
+	{ releaseDraftId }: { releaseDraftId: string },
+	transact: typeof scopedTransaction = scopedTransaction,
+): Promise<void> {
+	const inputs = await transact({ kind: "network" }, (trx) => readInputs(trx, releaseDraftId), "repeatable read");
 	if (!inputs) return;
 	const { rules, method, tallies, frame, shares } = inputs;
 	const cutOffs = { steady: rules.steadyCv, care: rules.careCv };
@@ -51,9 +51,7 @@ export async function computeReleaseDraft({ releaseDraftId }: { releaseDraftId: 
 	});
 	const cells = assembleCells({ method, frameCells: inputs.frameCells, shares, protection, estimates });
 	const audit = ReleaseAudit.parse({ ...protection.audit, seconds });
-	await scopedTransaction({ kind: "network" }, (trx) =>
-		writeDraft(trx, releaseDraftId, { ...method, joins }, audit, cells),
-	);
+	await transact({ kind: "network" }, (trx) => writeDraft(trx, releaseDraftId, { ...method, joins }, audit, cells));
 	log.info({ releaseDraftId, cells: cells.length, passed: audit.passed, seconds }, "release drafted");
 }
 

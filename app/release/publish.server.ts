@@ -25,6 +25,7 @@ export async function publishRelease(
 	viewer: Coordinator,
 	releaseDraftId: string,
 	codeVersion: string,
+	publishedAt: Date = new Date(),
 ): Promise<Published | NotPublished> {
 	const draft = await trx
 		.selectFrom("collect.release_draft")
@@ -47,11 +48,12 @@ export async function publishRelease(
 		rules: ReleaseRules.parse(draft.rules),
 		cells,
 		codeVersion,
+		publishedAt,
 	});
 	await insertCells(trx, releaseId, method, cells);
 	await trx
 		.updateTable("collect.release_draft")
-		.set({ status: "approved", decided_by: viewer.personId, decided_at: new Date(), release_id: releaseId })
+		.set({ status: "approved", decided_by: viewer.personId, decided_at: publishedAt, release_id: releaseId })
 		.where("release_draft_id", "=", releaseDraftId)
 		.execute();
 	return { outcome: "published", releaseId, number };
@@ -80,9 +82,16 @@ function plain(figure: object): unknown[] {
 async function insertRelease(
 	trx: Trx,
 	releaseId: string,
-	made: { method: ReleaseMethod; audit: ReleaseAudit; rules: ReleaseRules; cells: DraftCell[]; codeVersion: string },
+	made: {
+		method: ReleaseMethod;
+		audit: ReleaseAudit;
+		rules: ReleaseRules;
+		cells: DraftCell[];
+		codeVersion: string;
+		publishedAt: Date;
+	},
 ): Promise<number> {
-	const { method, audit, rules, cells, codeVersion } = made;
+	const { method, audit, rules, cells, codeVersion, publishedAt } = made;
 	const { measures, areas, ...told } = method;
 	const row = await trx
 		.insertInto("release.release")
@@ -91,6 +100,7 @@ async function insertRelease(
 			season: method.season,
 			form_key: method.formKey,
 			title: JSON.stringify(method.title),
+			published_at: publishedAt,
 			rules: JSON.stringify(rules),
 			method: JSON.stringify(told),
 			audit: JSON.stringify({ ...audit, failures: undefined }),

@@ -45,8 +45,8 @@ const crops: readonly (readonly [CropKey, share: number, median: number])[] = [
 /** Where a crop is planted more, or less, than elsewhere, by state. */
 const liking: Record<string, Partial<Record<CropKey, number>>> = {
 	"17": { pawpaw: 2, hazelnut: 0.5, aronia: 0.6 },
-	"19": { aronia: 1.8, pawpaw: 1 },
-	"27": { tart_cherry: 0.6, plum: 1.3, pawpaw: 0, hazelnut: 1.4 },
+	"19": { aronia: 1.8, plum: 0.6, tart_cherry: 0.8 },
+	"27": { tart_cherry: 0.6, plum: 2, pawpaw: 0, hazelnut: 1.4 },
 	"55": { tart_cherry: 1.5, pawpaw: 0.2, hazelnut: 1.2 },
 };
 /** How often an owner of one operation, of two and of three has another. */
@@ -105,7 +105,7 @@ function nearOf(random: Random, before: SeedOperation, next: SeedOperation): str
 }
 
 function inventPlantings(random: Random, stateFips: string): SeedPlanting[] {
-	const size = random.lognormal(1, 0.95);
+	const size = random.lognormal(1, 0.85);
 	const wanted = random.chance(0.28) ? 1 : random.whole(2, 3);
 	const choice = crops.map((crop): [(typeof crops)[number], number] => [
 		crop,

@@ -50,9 +50,9 @@ const hubs = [
 	{ longitude: -90.0, latitude: 38.8, strength: 0.9 },
 	{ longitude: -89.2, latitude: 37.6, strength: 0.6 },
 ] as const;
-const reachKm = 34;
+const reachKm = 36;
 /** Growers far from every hub: one here, two there. */
-const anywhere = 0.0045;
+const anywhere = 0.003;
 
 /** Counties with the weight of their share of the growers. */
 export function weighPlaces(places: readonly Place[]): [Place, number][] {
@@ -62,6 +62,6 @@ export function weighPlaces(places: readonly Place[]): [Place, number][] {
 			return sum + hub.strength * Math.exp(-(east ** 2 + north ** 2) / reachKm ** 2);
 		}, 0);
 		// Cut off, so that growers are gathered in a few counties of each hub and not thinly in all around it.
-		return [place, (near < 0.2 ? 0 : near) + anywhere];
+		return [place, (near < 0.3 ? 0 : 0.5 + near / 4) + anywhere];
 	});
 }

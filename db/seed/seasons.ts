@@ -25,6 +25,14 @@ export type Season = {
 	usualLoss: number;
 	/** Days by which harvest was later than usual. */
 	late: number;
+	/** When the figures were released and told of; null while the survey is open. */
+	release: {
+		draftedAt: Date;
+		publishedAt: Date;
+		reportStartedAt: Date;
+		reportSubmittedAt: Date;
+		reportPublishedAt: Date;
+	} | null;
 	/** Of everybody asked, how many have answered by the end (or until now). */
 	answering: number;
 };
@@ -44,6 +52,13 @@ const past: readonly Season[] = [
 		freeze: { longitude: -94.6, latitude: 46.4, worst: 0.12, lengthKm: 160, widthKm: 160, tilt: 0 },
 		usualLoss: 0.11,
 		late: 0,
+		release: {
+			draftedAt: at("2025-01-08", "10:20"),
+			publishedAt: at("2025-01-14", "9:45"),
+			reportStartedAt: at("2025-01-14", "13:30"),
+			reportSubmittedAt: at("2025-01-16", "11:15"),
+			reportPublishedAt: at("2025-01-17", "9:00"),
+		},
 		answering: 0.61,
 	},
 	{
@@ -57,6 +72,13 @@ const past: readonly Season[] = [
 		freeze: { longitude: -91.9, latitude: 42.2, worst: 0.87, lengthKm: 330, widthKm: 165, tilt: 22 },
 		usualLoss: 0.12,
 		late: 5,
+		release: {
+			draftedAt: at("2026-01-07", "10:20"),
+			publishedAt: at("2026-01-13", "9:45"),
+			reportStartedAt: at("2026-01-13", "13:30"),
+			reportSubmittedAt: at("2026-01-15", "11:15"),
+			reportPublishedAt: at("2026-01-16", "9:00"),
+		},
 		answering: 0.61,
 	},
 ];
@@ -76,6 +98,7 @@ export function listSeasons(now: Date): Season[] {
 			freeze: { longitude: -88.4, latitude: 44.9, worst: 0.3, lengthKm: 120, widthKm: 120, tilt: 0 },
 			usualLoss: 0.14,
 			late: -3,
+			release: null,
 			answering: 0.4,
 		},
 	];

@@ -1,13 +1,13 @@
 // Fills the demo's database: an invented network, three seasons of answers, two releases with their reports. Each step is
-// one transaction or finds its own half-done work again, and knows by what it leaves behind whether it is done: a seed
-// that was interrupted goes on at the next start, and a second run changes nothing.
+// one transaction and is known to be done by what it leaves behind: a seed that was interrupted goes on at the next start,
+// and a second run changes nothing.
 import type { Kysely } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
-import type { Associate } from "#app/auth/viewer.ts";
 import { connect } from "#db/connect.ts";
 import type { DB } from "#db/schema.ts";
 import { fillNetwork } from "./network.ts";
-import { findAssociate } from "./people.ts";
+import { findAssociate, findCoordinator } from "./people.ts";
+import { fillRelease, hasRelease, isOver, type Team } from "./releases.ts";
 import { listSeasons } from "./seasons.ts";
 import { report } from "./steps.ts";
 import { fillSeason, hasSurvey } from "./survey.ts";
@@ -19,10 +19,22 @@ async function seed(owner: Kysely<DB>, issuer: string): Promise<void> {
 	await report("Growers and people", () =>
 		inOne(owner, async (trx) => ((await hasOperations(trx)) ? there : fillNetwork(trx, issuer))),
 	);
-	const associate: Associate = await inOne(owner, findAssociate);
-	for (const season of listSeasons(now)) {
+	const team: Team = {
+		associate: await inOne(owner, findAssociate),
+		coordinator: await inOne(owner, findCoordinator),
+		codeVersion: process.env.CODE_VERSION ?? "unversioned",
+	};
+	const seasons = listSeasons(now);
+	for (const season of seasons) {
 		await report(`Season ${season.season}`, () =>
-			inOne(owner, async (trx) => ((await hasSurvey(trx, season)) ? there : fillSeason(trx, associate, season, now))),
+			inOne(owner, async (trx) =>
+				(await hasSurvey(trx, season)) ? there : fillSeason(trx, team.associate, season, now),
+			),
+		);
+	}
+	for (const season of seasons.filter(isOver)) {
+		await report(`Figures of ${season.season}`, () =>
+			inOne(owner, async (trx) => ((await hasRelease(trx, season)) ? there : fillRelease(trx, team, season))),
 		);
 	}
 }

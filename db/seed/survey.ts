@@ -10,6 +10,7 @@ import { cropKeys } from "#app/directory/crops.ts";
 import { states } from "#db/reference/states.ts";
 import { insertFacts, insertResponses } from "./insert-responses.ts";
 import { fillMailings } from "./mailings.ts";
+import { moveLog } from "./move-log.ts";
 import type { SeedPlanting } from "./operations.ts";
 import { listPlaces } from "./places.ts";
 import { type Asked, inventReply } from "./replies.ts";
@@ -52,7 +53,7 @@ async function makeSurvey(trx: Trx, associate: Associate, season: Season, now: D
 			crop_keys: [...cropKeys],
 			closes_at: stillToCome,
 			created_by: associate.personId,
-			created_at: openedAt,
+			created_at: madeAt(season),
 		})
 		.execute();
 	const stateFips = states.map((state) => state.stateFips);
@@ -70,22 +71,19 @@ async function makeSurvey(trx: Trx, associate: Associate, season: Season, now: D
 	await logSurvey(trx, associate, season);
 }
 
-async function logSurvey(trx: Trx, { personId }: Associate, { surveyId, openedAt, closedAt, season }: Season) {
+/** A survey is made some days before it is opened. */
+function madeAt({ openedAt }: Season): Date {
+	return new Date(openedAt.getTime() - 3 * 86_400_000);
+}
+
+async function logSurvey(trx: Trx, { personId }: Associate, survey: Season) {
+	const { surveyId, openedAt, closedAt, season } = survey;
 	const about = { personId, subjectKind: "survey", subjectId: surveyId };
 	await logEvent(trx, { ...about, action: "survey.created", detail: { season } });
 	if (closedAt) await logEvent(trx, { ...about, action: "survey.closed" });
-	await moveLog(trx, surveyId, openedAt);
+	await moveLog(trx, surveyId, madeAt(survey), "survey.created");
+	await moveLog(trx, surveyId, openedAt, "survey.opened");
 	if (closedAt) await moveLog(trx, surveyId, closedAt, "survey.closed");
-}
-
-/** What is logged while the demo is made happened when the demo says. Only the database's owner can do this. */
-export async function moveLog(trx: Trx, subjectId: string, happenedAt: Date, action?: string): Promise<void> {
-	await trx
-		.updateTable("log.event")
-		.set({ happened_at: happenedAt })
-		.where("subject_id", "=", subjectId)
-		.$if(action !== undefined, (query) => query.where("action", "=", action!))
-		.execute();
 }
 
 /** The frame with what the answers are invented from, in an order that is the same each time. */
