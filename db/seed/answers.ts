@@ -95,7 +95,9 @@ const otherCauses = [
 	["cause_other", 0.08],
 ] as const;
 
-/** What took the fruit, in steps of five that add up to a hundred; blank boxes leave no answer. */
+const causes = ["cause_freeze", ...otherCauses.map(([key]) => key)];
+
+/** What took the fruit, in steps of five that add up to a hundred; a box left blank beside others took nothing. */
 function causeAnswers(random: Random, season: Season, told: Told[]): Answer[] {
 	const isShort = ({ answers, normalLb, harvestedLb }: Told) =>
 		answers.every(({ kind }) => kind === "given") && harvestedLb < normalLb;
@@ -128,17 +130,14 @@ function causeAnswers(random: Random, season: Season, told: Told[]): Answer[] {
 		shares.set(cause, (shares.get(cause) ?? 0) + share);
 		left -= share;
 	}
-	return [...shares].map(([key, share]) => given(key, share, `${share}`));
+	return causes.map((key) => given(key, shares.get(key) ?? 0, shares.has(key) ? `${shares.get(key)}` : ""));
 }
 
 function dayAnswers(random: Random, season: Season, place: Place, told: Told[], until: string): Answer[] {
 	const picking = inventPicking(random, season, place, told);
 	if (!picking || random.chance(0.07)) return [];
 	const dayOf = (day: number) => new Date(Date.UTC(season.season, 0, day)).toISOString().slice(0, 10);
-	const answers = [
-		given("first_harvest", dayOf(picking.first), dayOf(picking.first)),
-		given("last_harvest", dayOf(picking.last), dayOf(picking.last)),
-	];
+	const answers = [plain("first_harvest", dayOf(picking.first)), plain("last_harvest", dayOf(picking.last))];
 	return answers.filter(({ value }) => String(value) <= until);
 }
 
@@ -156,17 +155,21 @@ function nextYearAnswers(
 	const buds = look > 0.65 ? "heavy" : look > -0.05 ? "normal" : look > -0.35 ? "light" : "none";
 	const answers: Answer[] = random.chance(0.1)
 		? []
-		: [random.chance(0.05) ? silent("bud_set", "dont_know") : { ...given("bud_set", buds, ""), given: null }];
+		: [random.chance(0.05) ? silent("bud_set", "dont_know") : plain("bud_set", buds)];
 	if (random.chance(0.07)) {
 		const frozen = freezeAt(season, place) > 0.4;
-		const text = random.pick((frozen ? freezeComments : comments)[operation.language]);
-		answers.push(given("comment", text, text));
+		answers.push(plain("comment", random.pick((frozen ? freezeComments : comments)[operation.language])));
 	}
 	return answers;
 }
 
-function given(questionKey: string, value: number | string, text: string, plantingId: string | null = null): Answer {
+function given(questionKey: string, value: number, text: string, plantingId: string | null = null): Answer {
 	return { questionKey, plantingId, kind: "given", value, given: { text } };
+}
+
+/** A day, a choice or a text is kept as it was given. */
+function plain(questionKey: string, value: string): Answer {
+	return { questionKey, plantingId: null, kind: "given", value, given: null };
 }
 
 function silent(questionKey: string, kind: "dont_know" | "refused"): Answer {

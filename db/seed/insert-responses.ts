@@ -10,7 +10,8 @@ const definition = FormDefinition.parse(afterHarvest);
 type Response = SeedResponse & { operation_id: string };
 
 /** Responses with what each holds now and what was sent in, a few statements for all of them. */
-export async function insertResponses(trx: Trx, { surveyId, season }: Season, replies: Reply[]): Promise<void> {
+export async function insertResponses(trx: Trx, survey: Season, asked: Asked[], replies: Reply[]): Promise<void> {
+	const { surveyId, season } = survey;
 	const responses = replies.flatMap(({ operation_id, response }): Response[] =>
 		response ? [{ ...response, operation_id }] : [],
 	);
@@ -30,7 +31,7 @@ export async function insertResponses(trx: Trx, { surveyId, season }: Season, re
 			first_submitted_at timestamptz, submitted_at timestamptz)
 		join collect.frame_operation f on f.survey_id = ${surveyId} and f.operation_id = r.operation_id`.execute(trx);
 	await insertAnswers(trx, responses);
-	await insertSubmissions(trx, responses);
+	await insertSubmissions(trx, asked, responses);
 }
 
 async function insertAnswers(trx: Trx, responses: Response[]): Promise<void> {
@@ -43,9 +44,16 @@ async function insertAnswers(trx: Trx, responses: Response[]): Promise<void> {
 			kind text, value jsonb, given jsonb, answered_at timestamptz)`.execute(trx);
 }
 
-async function insertSubmissions(trx: Trx, responses: Response[]): Promise<void> {
-	const rows = responses.flatMap(({ response_id, submissions }) =>
-		submissions.map((submission) => ({ ...submission, response_id })),
+/** What was sent in, with the plantings that were asked about. */
+async function insertSubmissions(trx: Trx, asked: Asked[], responses: Response[]): Promise<void> {
+	const plantingsOf = plantingsByOperation(asked);
+	const rows = responses.flatMap(({ response_id, operation_id, submissions }) =>
+		submissions.map(({ version, submitted_at, answers }) => ({
+			response_id,
+			version,
+			submitted_at,
+			answers: { plantings: plantingsOf.get(operation_id) ?? [], answers },
+		})),
 	);
 	await sql`insert into collect.submission (response_id, version, submitted_at, answers)
 		select response_id, version, submitted_at, answers
@@ -55,12 +63,7 @@ async function insertSubmissions(trx: Trx, responses: Response[]): Promise<void>
 
 /** The facts of each response's newest submission, with place, owner and stratum of the frozen frame. */
 export async function insertFacts(trx: Trx, { surveyId }: Season, asked: Asked[], replies: Reply[]): Promise<void> {
-	const plantingsOf = new Map(
-		asked.map(({ operation_id, plantings }) => [
-			operation_id,
-			plantings.map(({ planting_id, crop_key }) => ({ plantingId: planting_id, cropKey: crop_key })),
-		]),
-	);
+	const plantingsOf = plantingsByOperation(asked);
 	const rows = replies.flatMap(({ operation_id, response }) => {
 		const sent = response?.submissions.at(-1);
 		if (!sent) return [];
@@ -73,4 +76,13 @@ export async function insertFacts(trx: Trx, { surveyId }: Season, asked: Asked[]
 		from jsonb_to_recordset(${JSON.stringify(rows)}::jsonb)
 			as r(operation_id uuid, "measureKey" text, "cropKey" text, y float8, x float8)
 		join collect.frame_operation f on f.survey_id = ${surveyId} and f.operation_id = r.operation_id`.execute(trx);
+}
+
+function plantingsByOperation(asked: Asked[]) {
+	return new Map(
+		asked.map(({ operation_id, plantings }) => [
+			operation_id,
+			plantings.map(({ planting_id, crop_key }) => ({ plantingId: planting_id, cropKey: crop_key })),
+		]),
+	);
 }

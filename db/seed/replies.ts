@@ -144,7 +144,8 @@ function momentOf(random: Random, season: Season, now: Date): Date {
 		: moment;
 }
 
-const letters = "23456789ABCDEFGHJKMNPQRSTVWXYZ";
+const signs = [..."34679ACDEFGHJKMNPRTWXY"];
 function receiptCode(random: Random): string {
-	return Array.from({ length: 8 }, () => random.pick([...letters])).join("");
+	const part = () => Array.from({ length: 4 }, () => random.pick(signs)).join("");
+	return `${part()}-${part()}`;
 }

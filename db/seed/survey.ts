@@ -22,7 +22,7 @@ export async function fillSeason(trx: Trx, associate: Associate, season: Season,
 	const asked = await listAsked(trx, season.surveyId);
 	const replies = asked.map((operation) => inventReply(season, operation, now));
 	await setDispositions(trx, season.surveyId, replies);
-	await insertResponses(trx, season, replies);
+	await insertResponses(trx, season, asked, replies);
 	await insertFacts(trx, season, asked, replies);
 	await fillMailings(trx, associate, season, now);
 	const complete = replies.filter(({ disposition }) => disposition === "complete").length;
