@@ -4,6 +4,7 @@ import type { MailingFailure } from "./survey-mailing.server.ts";
 export type Mail = {
 	/** An invitation after the first is a new link that somebody asked for. */
 	kind: "invitation" | "new_link" | "reminder" | "receipt";
+	wave: number;
 	queuedAt: Date;
 	sentAt: Date | null;
 	failure: MailingFailure | null;
@@ -23,6 +24,7 @@ export async function listMails(trx: Trx, surveyId: string, operationIds: string
 	for (const { operation_id, kind, wave, queued_at, sent_at, failure } of rows) {
 		const mail = {
 			kind: (kind === "invitation" && wave > 1 ? "new_link" : kind) as Mail["kind"],
+			wave,
 			queuedAt: queued_at,
 			sentAt: sent_at,
 			failure: failure as MailingFailure | null,

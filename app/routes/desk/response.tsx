@@ -1,3 +1,105 @@
-export default function Page() {
-	return null;
+import { useTranslation } from "react-i18next";
+import { href, Link } from "react-router";
+import { z } from "zod";
+import type { Route } from "./+types/response";
+import { requireAssociate } from "#app/auth/guard.server.ts";
+import { findResponse } from "#app/collect/response-view.server.ts";
+import { findSurvey } from "#app/collect/surveys.server.ts";
+import { AnswerList } from "#app/components/answer-list.tsx";
+import { DescriptionList } from "#app/components/description-list.tsx";
+import { EmptyState } from "#app/components/empty-state.tsx";
+import { Section } from "#app/components/section.tsx";
+import { useFormat } from "#app/i18n/use-format.ts";
+import { refusal } from "#app/lib/refusal.ts";
+
+const Version = z.coerce.number().int().optional().catch(undefined);
+
+export async function loader({ context, params, request }: Route.LoaderArgs) {
+	const desk = requireAssociate(context);
+	const version = Version.parse(new URL(request.url).searchParams.get("version") ?? undefined);
+	const response = await desk.transaction(async (trx) => {
+		const survey = await findSurvey(trx, desk.viewer, params.surveyId);
+		return survey && findResponse(trx, desk.viewer, params, version);
+	});
+	if (!response) throw refusal("response_not_found");
+	return response;
+}
+
+/** One grower's answers as they were sent in. */
+export default function ResponsePage({ loaderData: response, params }: Route.ComponentProps) {
+	const { t } = useTranslation("desk");
+	const format = useFormat();
+	const { operationId, operationName, timeZone } = response;
+	return (
+		<>
+			<p className="no-print">
+				<Link to={href("/desk/surveys/:surveyId/responses", { surveyId: params.surveyId })}>{t("response.back")}</Link>
+			</p>
+			<Section title={t("response.title", { name: operationName })}>
+				<DescriptionList
+					items={[
+						{
+							term: t("growers.name"),
+							detail: (
+								<Link to={href("/desk/growers/:operationId", { operationId })} className="print-plain">
+									{operationName}
+								</Link>
+							),
+						},
+						{ term: t("growers.contact"), detail: response.contactName },
+						{
+							term: t("common:areaKind.county"),
+							detail: t("growers.county", { county: response.countyName, state: response.statePostal }),
+						},
+						{ term: t("response.receipt"), detail: response.receiptCode ?? t("response.noReceipt") },
+						{ term: t("response.how"), detail: t(`response.mode.${response.mode}`) },
+						{ term: t("response.language"), detail: t(`common:language.${response.language}`) },
+						{
+							term: t("response.pledge"),
+							detail: t("response.pledgeWhen", {
+								version: response.pledgeVersion,
+								moment: format.moment(response.pledgedAt, timeZone),
+							}),
+						},
+						{ term: t("response.sentIn"), detail: <Versions response={response} /> },
+					]}
+				/>
+				{response.shownVersion === null ? (
+					<div className="mt-8">
+						<EmptyState title={t("response.draftTitle")}>
+							{t("response.draftBody", { moment: format.moment(response.startedAt, timeZone) })}
+						</EmptyState>
+					</div>
+				) : (
+					<AnswerList groups={response.groups} level={3} />
+				)}
+			</Section>
+		</>
+	);
+}
+
+/** Each time the answers were sent in, newest first; what was sent before stays to be read. */
+function Versions({ response }: { response: Route.ComponentProps["loaderData"] }) {
+	const { t } = useTranslation("desk");
+	const format = useFormat();
+	const { submissions, shownVersion, timeZone } = response;
+	if (submissions.length === 0) return t("response.notSentIn");
+	return (
+		<ul>
+			{submissions.map(({ version, submittedAt }) => {
+				const words = t("response.version", { version, moment: format.moment(submittedAt, timeZone) });
+				return (
+					<li key={version}>
+						{version === shownVersion ? (
+							<strong>{submissions.length > 1 ? t("response.shown", { version: words }) : words}</strong>
+						) : (
+							<Link to={`?version=${version}`} preventScrollReset className="print-plain">
+								{words}
+							</Link>
+						)}
+					</li>
+				);
+			})}
+		</ul>
+	);
 }

@@ -5,6 +5,7 @@ import { DataTable, type Sort } from "#app/components/data-table.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { AnsweredLink } from "./answered-link.tsx";
 import { MailState } from "./mail-state.tsx";
 
 export const dispositionTones = {
@@ -57,7 +58,7 @@ export function FrameTable({ rows, sort, caption, surveyId, timeZone, empty }: F
 					key: "answered",
 					header: t("surveys.answered"),
 					sortable: true,
-					cell: (row) => <AnsweredLink row={row} surveyId={surveyId} timeZone={timeZone} />,
+					cell: (row) => <AnsweredLink {...row} surveyId={surveyId} of={row.name} timeZone={timeZone} />,
 				},
 				{ key: "mails", header: t("responses.mails"), cell: (row) => <LastMail row={row} timeZone={timeZone} /> },
 			]}
@@ -75,24 +76,6 @@ function Grower({ row: { operationId, name, contactName, phone } }: { row: Frame
 			</Link>
 			<span className="block text-xs text-quiet">{[contactName, phone].filter(Boolean).join(" · ")}</span>
 		</>
-	);
-}
-
-type AnsweredLinkProps = { row: FrameRow; surveyId: string; timeZone: string };
-
-function AnsweredLink({ row, surveyId, timeZone }: AnsweredLinkProps) {
-	const { t } = useTranslation("desk");
-	const format = useFormat();
-	if (!row.responseId) return <span className="text-quiet">{t("responses.notAnswered")}</span>;
-	const text = row.submittedAt ? format.dayOf(row.submittedAt, timeZone) : t("responses.begun");
-	return (
-		<Link
-			to={href("/desk/surveys/:surveyId/responses/:responseId", { surveyId, responseId: row.responseId })}
-			aria-label={t("responses.answersOf", { text, name: row.name })}
-			className="print-plain"
-		>
-			{text}
-		</Link>
 	);
 }
 
