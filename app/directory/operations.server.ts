@@ -124,6 +124,7 @@ export async function findOperation(trx: Trx, viewer: Associate, operationId: st
 			"o.phone",
 			"o.mass_unit as massUnit",
 			"c.district_key as districtKey",
+			"s.time_zone as timeZone",
 		])
 		.where("o.operation_id", "=", operationId)
 		.executeTakeFirst();

@@ -1,4 +1,5 @@
 import { useTranslation } from "react-i18next";
+import { href, Link } from "react-router";
 import type { Route } from "./+types/growers";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { DataTable } from "#app/components/data-table.tsx";
@@ -30,7 +31,16 @@ export default function Growers({ loaderData }: Route.ComponentProps) {
 				rowKey={(row) => row.operationId}
 				sort={{ key: query.sort, direction: query.direction }}
 				columns={[
-					{ key: "name", header: t("growers.name"), sortable: true, cell: (row) => row.name },
+					{
+						key: "name",
+						header: t("growers.name"),
+						sortable: true,
+						cell: ({ operationId, name }) => (
+							<Link to={href("/desk/growers/:operationId", { operationId })} className="print-plain">
+								{name}
+							</Link>
+						),
+					},
 					{ key: "owner", header: t("growers.contact"), sortable: true, cell: (row) => row.contactName },
 					{
 						key: "county",
