@@ -44,12 +44,20 @@ export function requireResearcher(context: Context): Researcher {
 	return { ...person, role: "researcher" };
 }
 
-/** Whoever answers a survey: by personal link (one operation, one survey) or signed in. @throws refusal 401 or 403. */
-export function requireGrower(context: Context): Access<Grower> {
-	const { link } = context.get(visitorContext);
-	if (!link) return requireOrchard(context);
-	const operationIds = [link.operationId];
-	return access({ role: "grower", operationIds, link, person: null }, { kind: "grower", operationIds });
+/**
+ * Whoever answers a survey for an operation: by the personal link that opens it, else signed in. A link opens its own place
+ * only, so that a grower who is signed in too still reaches the other operations.
+ * @throws refusal 401 when neither is there, 404 when what is there opens another place.
+ */
+export function requireGrower(context: Context, place: { surveyId: string; operationId: string }): Access<Grower> {
+	const { link, person, grants } = context.get(visitorContext);
+	if (link && link.surveyId === place.surveyId && link.operationId === place.operationId) {
+		const operationIds = [link.operationId];
+		return access({ role: "grower", operationIds, link, person: null }, { kind: "grower", operationIds });
+	}
+	if (person && grants.operationIds.length > 0) return requireOrchard(context);
+	if (link || person) throw refusal("survey_not_found");
+	throw refusal("link_session_over");
 }
 
 /** A signed-in grower's own pages: contact data and past seasons, which a personal link never opens. */

@@ -25,6 +25,8 @@ export const Condition: z.ZodType<Condition> = z.lazy(() =>
 const questionBase = {
 	key: Key,
 	text: Words,
+	/** What the answer is called in a sentence and in a narrow table, where `text` is a question. */
+	label: Words.optional(),
 	help: Words.optional(),
 	required: z.boolean(),
 	/** Only asked when this holds; what a condition hides is kept while editing and left out at submission. */

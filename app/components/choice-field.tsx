@@ -10,6 +10,8 @@ type ChoiceFieldProps = {
 	options: Option[];
 	defaultValue?: string | string[] | null;
 	help?: ReactNode;
+	/** What the answer is called in a sentence about it, where the legend is a question. */
+	noun?: string;
 	problem?: Problem;
 	optional?: boolean;
 	kind: "radio" | "checkbox" | "select";
@@ -20,14 +22,14 @@ export function ChoiceField(props: ChoiceFieldProps) {
 	return props.kind === "select" ? <SelectField {...props} /> : <OptionList {...props} />;
 }
 
-function SelectField({ legend, name, options, defaultValue, help, problem, optional }: ChoiceFieldProps) {
+function SelectField({ legend, name, options, defaultValue, help, noun, problem, optional }: ChoiceFieldProps) {
 	return (
 		<FieldFrame problem={problem}>
 			<label htmlFor={fieldId(name)} className="font-bold">
 				<LabelText label={legend} optional={optional} />
 			</label>
 			<FieldHelp name={name}>{help}</FieldHelp>
-			<FieldProblem name={name} label={legend} problem={problem} />
+			<FieldProblem name={name} label={noun ?? legend} problem={problem} />
 			<select
 				id={fieldId(name)}
 				name={name}
@@ -46,7 +48,7 @@ function SelectField({ legend, name, options, defaultValue, help, problem, optio
 	);
 }
 
-function OptionList({ legend, name, options, defaultValue, help, problem, optional, kind }: ChoiceFieldProps) {
+function OptionList({ legend, name, options, defaultValue, help, noun, problem, optional, kind }: ChoiceFieldProps) {
 	const selected = chosen(defaultValue);
 	return (
 		<FieldFrame problem={problem}>
@@ -55,7 +57,7 @@ function OptionList({ legend, name, options, defaultValue, help, problem, option
 					<LabelText label={legend} optional={optional} />
 				</legend>
 				<FieldHelp name={name}>{help}</FieldHelp>
-				<FieldProblem name={name} label={legend} problem={problem} />
+				<FieldProblem name={name} label={noun ?? legend} problem={problem} />
 				<div className="mt-2 grid gap-2">
 					{options.map((option, index) => (
 						<OptionRow

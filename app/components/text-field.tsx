@@ -10,6 +10,8 @@ type TextFieldProps = {
 	name: string;
 	defaultValue?: string | number | null;
 	help?: ReactNode;
+	/** What the answer is called in a sentence about it, where the label is a question. */
+	noun?: string;
 	problem?: Problem;
 	optional?: boolean;
 	type?: "text" | "email" | "tel" | "url" | "search" | "date" | "datetime-local" | "time" | "password";
@@ -20,6 +22,8 @@ type TextFieldProps = {
 	maxLength?: number;
 	/** A unit that stands beside the box. */
 	suffix?: ReactNode;
+	/** What belongs to the field and stands below its box. */
+	below?: ReactNode;
 	size?: keyof typeof widths;
 };
 
@@ -28,11 +32,13 @@ export function TextField({
 	label,
 	name,
 	help,
+	noun,
 	problem,
 	optional,
 	multiline,
 	rows,
 	suffix,
+	below,
 	size,
 	...rest
 }: TextFieldProps) {
@@ -52,11 +58,12 @@ export function TextField({
 				<LabelText label={label} optional={optional} />
 			</label>
 			<FieldHelp name={name}>{help}</FieldHelp>
-			<FieldProblem name={name} label={label} problem={problem} />
+			<FieldProblem name={name} label={noun ?? label} problem={problem} />
 			<div className="mt-1.5 flex flex-wrap items-center gap-2">
 				{multiline ? <textarea {...shared} rows={rows ?? 4} /> : <input {...shared} type={type} />}
 				{suffix && <span className="text-quiet">{suffix}</span>}
 			</div>
+			{below}
 		</FieldFrame>
 	);
 }

@@ -31,6 +31,7 @@ export const afterHarvest: FormDefinition = {
 						en: "How many were old enough to bear this season?",
 						es: "¿Cuántas plantas ya estaban en edad de producir esta temporada?",
 					},
+					label: { en: "Trees or bushes in bearing", es: "Árboles o arbustos en producción" },
 					help: {
 						en: "Trees or bushes in bearing, whether or not they had fruit.",
 						es: "Árboles o arbustos en producción, hayan dado fruta o no.",
@@ -47,6 +48,7 @@ export const afterHarvest: FormDefinition = {
 						en: "In a normal year, how much would you pick from this planting?",
 						es: "En un año normal, ¿cuánto cosecharía de esta plantación?",
 					},
+					label: { en: "Normal crop", es: "Cosecha normal" },
 					help: { en: "Your best estimate is fine.", es: "Basta con su mejor cálculo." },
 					required: true,
 					limits: { hardMin: 0, hardMax: 200_000_000 },
@@ -57,6 +59,7 @@ export const afterHarvest: FormDefinition = {
 					type: "number",
 					unitFamily: "mass",
 					text: { en: "How much did you pick from it this season?", es: "¿Cuánto cosechó de ella esta temporada?" },
+					label: { en: "What you picked", es: "Lo que cosechó" },
 					help: { en: "Enter 0 if everything was lost.", es: "Escriba 0 si se perdió todo." },
 					required: true,
 					limits: { hardMin: 0, hardMax: 200_000_000 },
@@ -114,6 +117,7 @@ export const afterHarvest: FormDefinition = {
 					key: "bud_set",
 					type: "rating",
 					text: { en: "How do the buds for next year look?", es: "¿Cómo se ven las yemas para el próximo año?" },
+					label: { en: "Buds for next year", es: "Yemas para el próximo año" },
 					required: false,
 					sensitive: false,
 					options: [
@@ -130,6 +134,7 @@ export const afterHarvest: FormDefinition = {
 						en: "Anything your extension associate should know?",
 						es: "¿Algo que deba saber su asesor de extensión?",
 					},
+					label: { en: "Your note", es: "Su nota" },
 					help: {
 						en: "Read by your state's associates only, never published.",
 						es: "Solo lo leen los asesores de su estado; nunca se publica.",

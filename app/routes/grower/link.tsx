@@ -1,3 +1,56 @@
-export default function Page() {
-	return null;
+import { useTranslation } from "react-i18next";
+import { Form, href, redirect } from "react-router";
+import type { Route } from "./+types/link";
+import { scopedTransaction } from "#app/auth/scope.server.ts";
+import { sessionContext } from "#app/auth/session.server.ts";
+import { findLink, markOpened, partOf } from "#app/collect/personal-link.server.ts";
+import { Button } from "#app/components/button.tsx";
+import { DescriptionList } from "#app/components/description-list.tsx";
+import { Page } from "#app/components/page.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import { languageCookie } from "#app/i18n/middleware.server.ts";
+import { refusal } from "#app/lib/refusal.ts";
+
+/** Looks only, for mail scanners open links too; a forwarded link shows no whole name. */
+export async function loader({ params }: Route.LoaderArgs) {
+	const link = await scopedTransaction({ kind: "network" }, (trx) => findLink(trx, params.token));
+	if (!link) throw refusal("link_not_valid");
+	return { title: link.title, season: link.season, operation: partOf(link.operationName), county: link.countyName };
+}
+
+/** The button trades the token for a session, and the browser goes on to an address that does not hold it. */
+export async function action({ context, params, request }: Route.ActionArgs) {
+	const link = await scopedTransaction({ kind: "network" }, async (trx) => {
+		const found = await findLink(trx, params.token);
+		if (found) await markOpened(trx, found.personalLinkId);
+		return found;
+	});
+	if (!link) throw refusal("link_not_valid");
+	context.get(sessionContext).set("personalLinkId", link.personalLinkId);
+	const { surveyId, operationId } = link;
+	const chosen: unknown = await languageCookie.parse(request.headers.get("cookie"));
+	return redirect(href("/answer/:surveyId/:operationId", { surveyId, operationId }), {
+		status: 303,
+		// The directory knows which language this grower reads, until the visitor says otherwise.
+		headers: chosen ? {} : { "set-cookie": await languageCookie.serialize(link.language) },
+	});
+}
+
+export default function LinkPage({ loaderData }: Route.ComponentProps) {
+	const { t, i18n } = useTranslation("grower");
+	const { title, season, operation, county } = loaderData;
+	return (
+		<Page title={t("link.title", { survey: wordsIn(title, i18n.language), season })} lead={t("link.lead")}>
+			<DescriptionList
+				items={[
+					{ term: t("link.operation"), detail: operation },
+					{ term: t("link.county"), detail: county },
+				]}
+			/>
+			<Form method="post" className="mt-6">
+				<Button>{t("link.open")}</Button>
+			</Form>
+			<p className="mt-6 text-base text-quiet">{t("link.notYours")}</p>
+		</Page>
+	);
 }

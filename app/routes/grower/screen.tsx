@@ -1,3 +1,135 @@
-export default function Page() {
-	return null;
+import { useEffect, useRef } from "react";
+import { useTranslation } from "react-i18next";
+import { data, Form, href, Link, redirect, useNavigation } from "react-router";
+import type { Route } from "./+types/screen";
+import { requireGrower } from "#app/auth/guard.server.ts";
+import { saveStep } from "#app/collect/responses.server.ts";
+import { readStep, valuesOf } from "#app/collect/step-fields.ts";
+import { listSteps, questionsAsked } from "#app/collect/steps.ts";
+import { Button } from "#app/components/button.tsx";
+import { ErrorSummary } from "#app/components/error-summary.tsx";
+import { Page } from "#app/components/page.tsx";
+import { TallyStrokes } from "#app/components/tally-strokes.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import { getLanguage } from "#app/i18n/middleware.server.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
+import { refusal } from "#app/lib/refusal.ts";
+import { getAnswering, todayIn } from "./parts/answering.server.ts";
+import { labelOf, QuestionField } from "./parts/question-field.tsx";
+import { ScreenUnknown } from "./parts/unknown-boxes.tsx";
+import { readPosted } from "./parts/posted.server.ts";
+import { useStepTitle } from "./parts/step-title.ts";
+
+export async function loader({ context, params }: Route.LoaderArgs) {
+	const answering = await getAnswering(context, params);
+	if (!answering.response) throw redirect(href("/answer/:surveyId/:operationId", params), 303);
+	const { definition, plantings, answers, massUnit } = answering;
+	const steps = listSteps(definition, plantings, answers);
+	const at = steps.findIndex((step) => step.key === params.screen);
+	const step = steps[at];
+	if (!step) throw refusal("page_not_found");
+	const questions = questionsAsked(step, definition, plantings, answers);
+	return {
+		step,
+		questions,
+		values: valuesOf(step, questions, answers, { massUnit, language: getLanguage(context) }),
+		number: at + 1,
+		of: steps.length,
+		previous: steps[at - 1]?.key ?? null,
+	};
+}
+
+export async function action({ context, params, request }: Route.ActionArgs) {
+	const grower = requireGrower(context, params);
+	const values = await readPosted(request);
+	const { definition, plantings, answers, season, timeZone } = await getAnswering(context, params);
+	const step = listSteps(definition, plantings, answers).find(({ key }) => key === params.screen);
+	if (!step) throw refusal("page_not_found");
+	const read = readStep(step, questionsAsked(step, definition, plantings, answers), values, {
+		language: getLanguage(context),
+		season,
+		today: todayIn(timeZone),
+	});
+	if (!read.ok) return data({ values, problems: read.problems }, { status: 400 });
+
+	const outcome = await grower.transaction((trx) => saveStep(trx, grower.viewer, params, step.key, read.answers));
+	if (outcome === "closed") throw refusal("survey_closed");
+	if (outcome === "not_found") throw refusal("survey_not_found");
+	if (outcome === "step_not_found") throw refusal("page_not_found");
+	if (outcome === "not_started") return redirect(href("/answer/:surveyId/:operationId", params), 303);
+	return redirect(await nextAddress(context, params, request), 303);
+}
+
+/** The next step given what was just answered; from the review back to it. */
+async function nextAddress(
+	context: Route.ActionArgs["context"],
+	params: Route.ActionArgs["params"],
+	request: Request,
+): Promise<string> {
+	const review = href("/answer/:surveyId/:operationId/review", params);
+	if (new URL(request.url).searchParams.has("review")) return review;
+	const { definition, plantings, answers } = await getAnswering(context, params);
+	const steps = listSteps(definition, plantings, answers);
+	const next = steps[steps.findIndex(({ key }) => key === params.screen) + 1];
+	return next ? href("/answer/:surveyId/:operationId/ask/:screen", { ...params, screen: next.key }) : review;
+}
+
+export default function ScreenPage({ loaderData, actionData, params }: Route.ComponentProps) {
+	const { t, i18n } = useTranslation("grower");
+	const format = useFormat();
+	const busy = useNavigation().state === "submitting";
+	const { step, questions, number, of, previous } = loaderData;
+	const values = actionData?.values ?? loaderData.values;
+	const title = useStepTitle()(step);
+	const help = step.screen.help && wordsIn(step.screen.help, i18n.language);
+	const shared = new Set(step.screen.sumToHundred ?? []);
+	useFocusOnArrival(step.key);
+	return (
+		<Page title={title} lead={help}>
+			<div className="-mt-4 mb-6 flex items-center gap-3 text-base text-quiet">
+				<TallyStrokes done={number - 1} all={of} />
+				<span>{t("screen.progress", { number: format.number(number), of: format.number(of) })}</span>
+			</div>
+			<ErrorSummary
+				problems={actionData?.problems}
+				labels={Object.fromEntries(questions.map((question) => [question.key, labelOf(question, i18n.language)]))}
+			/>
+			{/* A screen of its own: boxes of one step must not carry their text into the next. */}
+			<Form key={step.key} method="post" noValidate>
+				{questions.map((question) => (
+					<QuestionField
+						key={question.key}
+						question={question}
+						planting={step.planting}
+						values={values}
+						mayNotKnow={!shared.has(question.key)}
+						problem={actionData?.problems.find(({ field }) => field === question.key)}
+					/>
+				))}
+				{shared.size > 0 && <ScreenUnknown values={values} />}
+				<div className="mt-8 flex flex-wrap items-center gap-4">
+					<Button busy={busy}>{t("common:button.continue")}</Button>
+					<Link to={backAddress(params, previous)} className="inline-flex min-h-11 items-center">
+						{t("common:button.back")}
+					</Link>
+				</div>
+			</Form>
+		</Page>
+	);
+}
+
+function backAddress(params: Route.ComponentProps["params"], previous: string | null): string {
+	return previous
+		? href("/answer/:surveyId/:operationId/ask/:screen", { ...params, screen: previous })
+		: href("/answer/:surveyId/:operationId", params);
+}
+
+/** A new screen begins at its heading, also for whoever cannot see that it changed. */
+function useFocusOnArrival(key: string) {
+	const shown = useRef(key);
+	useEffect(() => {
+		if (shown.current === key) return;
+		shown.current = key;
+		document.getElementById("content")?.focus();
+	}, [key]);
 }

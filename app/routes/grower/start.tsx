@@ -1,3 +1,106 @@
-export default function Page() {
-	return null;
+import { useTranslation } from "react-i18next";
+import { Form, href, redirect } from "react-router";
+import type { Route } from "./+types/start";
+import { requireGrower } from "#app/auth/guard.server.ts";
+import { pledgeVersion } from "#app/collect/pledge.ts";
+import { findOpenStep } from "#app/collect/progress.ts";
+import { startResponse } from "#app/collect/responses.server.ts";
+import { listSteps } from "#app/collect/steps.ts";
+import { Button, ButtonLink } from "#app/components/button.tsx";
+import { Notice } from "#app/components/notice.tsx";
+import { Page } from "#app/components/page.tsx";
+import { Section } from "#app/components/section.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import { getLanguage } from "#app/i18n/middleware.server.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
+import { refusal } from "#app/lib/refusal.ts";
+import { getAnswering } from "./parts/answering.server.ts";
+
+export async function loader({ context, params }: Route.LoaderArgs) {
+	const answering = await getAnswering(context, params);
+	const { definition, plantings, answers, response } = answering;
+	return {
+		title: answering.title,
+		season: answering.season,
+		operationName: answering.operationName,
+		closesAt: answering.closesAt,
+		timeZone: answering.timeZone,
+		minutes: definition.minutes,
+		steps: listSteps(definition, plantings, answers).length,
+		begun: response !== null,
+		receiptCode: response?.receiptCode ?? null,
+		openStep: findOpenStep(definition, plantings, answers)?.key ?? null,
+	};
+}
+
+export async function action({ context, params }: Route.ActionArgs) {
+	const grower = requireGrower(context, params);
+	const language = getLanguage(context);
+	const outcome = await grower.transaction((trx) =>
+		startResponse(trx, grower.viewer, params, { language, pledgeVersion }),
+	);
+	if (outcome === "not_found") throw refusal("survey_not_found");
+	if (outcome === "closed") throw refusal("survey_closed");
+	const { definition, plantings, answers } = await getAnswering(context, params);
+	const step = findOpenStep(definition, plantings, answers);
+	const next = step
+		? href("/answer/:surveyId/:operationId/ask/:screen", { ...params, screen: step.key })
+		: href("/answer/:surveyId/:operationId/review", params);
+	return redirect(next, 303);
+}
+
+export default function Start({ loaderData, params }: Route.ComponentProps) {
+	const { t, i18n } = useTranslation("grower");
+	const format = useFormat();
+	const { title, season, operationName, closesAt, timeZone, minutes, steps, begun, receiptCode, openStep } = loaderData;
+	const values = { survey: wordsIn(title, i18n.language), season, operation: operationName };
+	return (
+		<Page title={t("start.title", values)} lead={t("start.lead", values)}>
+			{receiptCode && (
+				<Notice tone="info" title={t("start.sentTitle")}>
+					<p>{t("start.sent", { code: receiptCode, closes: format.moment(closesAt, timeZone) })}</p>
+				</Notice>
+			)}
+			<p>
+				{t("start.steps", { count: steps, value: format.number(steps) })}{" "}
+				{t("start.minutes", { count: minutes, value: format.number(minutes) })}
+			</p>
+			<p className="mt-3">{t("start.until", { closes: format.moment(closesAt, timeZone) })}</p>
+			<Section title={t("pledge.title")}>
+				<Pledge />
+			</Section>
+			{begun ? (
+				<div className="mt-6 flex flex-wrap gap-3">
+					{openStep && (
+						<ButtonLink to={href("/answer/:surveyId/:operationId/ask/:screen", { ...params, screen: openStep })}>
+							{t("start.goOn")}
+						</ButtonLink>
+					)}
+					<ButtonLink
+						kind={openStep ? "secondary" : "primary"}
+						to={href("/answer/:surveyId/:operationId/review", params)}
+					>
+						{t("start.review")}
+					</ButtonLink>
+				</div>
+			) : (
+				<Form method="post" className="mt-6">
+					<p className="mb-4">{t("pledge.agreeing")}</p>
+					<Button>{t("start.begin")}</Button>
+				</Form>
+			)}
+		</Page>
+	);
+}
+
+/** What the network promises before it asks; a change of these words is a new `pledgeVersion`. */
+function Pledge() {
+	const { t } = useTranslation("grower");
+	return (
+		<ul className="list-disc space-y-2 pl-6">
+			{(["use", "who", "never", "law", "free"] as const).map((part) => (
+				<li key={part}>{t(`pledge.${part}`)}</li>
+			))}
+		</ul>
+	);
 }

@@ -1,0 +1,23 @@
+import type { RouterContextProvider } from "react-router";
+import { requireGrower } from "#app/auth/guard.server.ts";
+import { type Answering, findAnswering } from "#app/collect/responses.server.ts";
+import { refusal } from "#app/lib/refusal.ts";
+
+export type Place = { surveyId: string; operationId: string };
+
+/**
+ * The survey that somebody may answer now, with what was answered so far.
+ * @throws refusal 401 or 404 for who may not, 410 when it is closed.
+ */
+export async function getAnswering(context: Readonly<RouterContextProvider>, place: Place): Promise<Answering> {
+	const grower = requireGrower(context, place);
+	const answering = await grower.transaction((trx) => findAnswering(trx, grower.viewer, place));
+	if (!answering) throw refusal("survey_not_found");
+	if (!answering.isOpen) throw refusal("survey_closed");
+	return answering;
+}
+
+/** The day it is at the operation, for answers that must not lie in the future. */
+export function todayIn(timeZone: string, now = new Date()): string {
+	return new Intl.DateTimeFormat("sv-SE", { timeZone }).format(now);
+}
