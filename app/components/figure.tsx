@@ -24,7 +24,10 @@ export function Figure(props: FigureProps) {
 	const headline = size === "headline";
 	const bounds =
 		typeof lower === "number" && typeof upper === "number"
-			? t("figure.interval", { lower: format.number(lower, decimals), upper: format.quantity(upper, unit, decimals) })
+			? t(headline ? "figure.likely" : "figure.interval", {
+					lower: format.number(lower, decimals),
+					upper: format.quantity(upper, unit, decimals),
+				})
 			: "";
 	return (
 		<span className={headline ? "block" : undefined}>
@@ -33,7 +36,7 @@ export function Figure(props: FigureProps) {
 			</strong>
 			{bounds && (
 				<span className={classes("text-quiet", headline ? "mt-2 block text-lg" : "ml-2 whitespace-nowrap text-xs")}>
-					{headline ? t("figure.likely", { bounds }) : bounds}
+					{bounds}
 				</span>
 			)}
 			{steadiness && (headline || steadiness !== "steady") && (

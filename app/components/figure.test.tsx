@@ -1,0 +1,34 @@
+import { createInstance } from "i18next";
+import { renderToStaticMarkup } from "react-dom/server";
+import { I18nextProvider, initReactI18next } from "react-i18next";
+import { expect, test } from "vitest";
+import type { Language } from "#app/i18n/language.ts";
+import { resources } from "#app/i18n/resources.ts";
+import { i18nextSettings } from "#app/i18n/settings.ts";
+import { Figure, type FigureProps } from "./figure.tsx";
+
+const loss: FigureProps = { status: "shown", value: 62, lower: 57, upper: 67, unit: "percent", decimals: 0 };
+
+/** What a reader of the language sees, without the markup. */
+async function seen(language: Language, figure: FigureProps): Promise<string> {
+	const i18n = createInstance();
+	await i18n.use(initReactI18next).init({ ...i18nextSettings, resources, lng: language });
+	const markup = renderToStaticMarkup(
+		<I18nextProvider i18n={i18n}>
+			<Figure {...figure} />
+		</I18nextProvider>,
+	);
+	return markup.replace(/<[^>]+>/g, "|").replace(/\|+/g, "|");
+}
+
+test("a headline says its likely range as a sentence, and a cell as a range", async () => {
+	expect(await seen("en", { ...loss, size: "headline" })).toBe("|62%|Likely between 57 and 67%|");
+	expect(await seen("es", { ...loss, size: "headline" })).toBe("|62%|Probablemente entre 57 y 67%|");
+	expect(await seen("en", loss)).toBe("|62%|57 to 67%|");
+	expect(await seen("es", loss)).toBe("|62%|57 a 67%|");
+});
+
+test("a withheld figure shows its one word and never a number", async () => {
+	expect(await seen("en", { ...loss, status: "withheld" })).toBe("|Withheld|");
+	expect(await seen("es", { ...loss, status: "withheld" })).toBe("|No se publica|");
+});
