@@ -30,5 +30,5 @@ test("a headline says its likely range as a sentence, and a cell as a range", as
 
 test("a withheld figure shows its one word and never a number", async () => {
 	expect(await seen("en", { ...loss, status: "withheld" })).toBe("|Withheld|");
-	expect(await seen("es", { ...loss, status: "withheld" })).toBe("|No se publica|");
+	expect(await seen("es", { ...loss, status: "withheld" })).toBe("|Confidencial|");
 });
