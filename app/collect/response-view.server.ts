@@ -1,7 +1,7 @@
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { listAnswerLines } from "./answer-lines.ts";
-import type { Answer } from "./form.ts";
+import type { Submission } from "./answer-rows.server.ts";
 import { findSurveyForm } from "./forms.server.ts";
 import type { PlantingAsked } from "./steps.ts";
 import { isId } from "./surveys.server.ts";
@@ -32,15 +32,14 @@ export async function findResponse(
 		.orderBy("version", "desc")
 		.execute();
 	const shown = submissions.find((submission) => submission.version === version) ?? submissions[0];
-	const answers = shown ? await listAnswers(trx, responseId, shown.version) : [];
-	const plantings = await listPlantings(trx, response.operationId, answers);
+	const submission = shown && (await getSubmission(trx, responseId, shown.version));
 	return {
 		...response,
 		mode: response.mode as "web" | "telephone" | "paper",
 		language: response.language as "en" | "es",
 		submissions,
 		shownVersion: shown?.version ?? null,
-		groups: shown ? listAnswerLines(definition, plantings, answers) : [],
+		groups: submission ? listAnswerLines(definition, await listPlantings(trx, submission), submission.answers) : [],
 	};
 }
 
@@ -72,35 +71,35 @@ function selectResponse(trx: Trx, viewer: Associate) {
 		]);
 }
 
-async function listAnswers(trx: Trx, responseId: string, version: number): Promise<Answer[]> {
+async function getSubmission(trx: Trx, responseId: string, version: number): Promise<Submission> {
 	const { answers } = await trx
 		.selectFrom("collect.submission")
 		.select("answers")
 		.where("response_id", "=", responseId)
 		.where("version", "=", version)
 		.executeTakeFirstOrThrow();
-	return answers as Answer[];
+	return answers as Submission;
 }
 
-/** The plantings that the answers tell of, also those taken out since; what was planted later was not asked about. */
-async function listPlantings(trx: Trx, operationId: string, answers: Answer[]): Promise<PlantingAsked[]> {
-	const ids = [...new Set(answers.flatMap((answer) => answer.plantingId ?? []))];
+/** The plantings that were asked about then, with the crops they had, also those taken out since; none planted later. */
+async function listPlantings(trx: Trx, { plantings }: Submission): Promise<PlantingAsked[]> {
+	const ids = plantings.map(({ plantingId }) => plantingId);
 	const rows = await trx
-		.selectFrom("directory.planting as p")
-		.innerJoin("directory.crop as c", "c.crop_key", "p.crop_key")
-		.where("p.operation_id", "=", operationId)
-		.where((eb) => eb("p.planting_id", "=", eb.fn.any(eb.val(ids))))
-		.select([
-			"p.planting_id as plantingId",
-			"p.crop_key as cropKey",
-			"p.cultivar",
-			"p.bearing_trees as bearingTrees",
-			"c.plant_kind as plantKind",
-			"c.bushel_lb as bushelLb",
-		])
-		.orderBy("c.position")
-		.orderBy("p.cultivar")
-		.orderBy("p.planting_id")
+		.selectFrom("directory.planting")
+		.select(["planting_id", "cultivar", "bearing_trees"])
+		.where((eb) => eb("planting_id", "=", eb.fn.any(eb.val(ids))))
 		.execute();
-	return rows.map((row) => ({ ...row, plantKind: row.plantKind as PlantingAsked["plantKind"] }));
+	const crops = await trx.selectFrom("directory.crop").select(["crop_key", "plant_kind", "bushel_lb"]).execute();
+	return plantings.map(({ plantingId, cropKey }) => {
+		const row = rows.find((planting) => planting.planting_id === plantingId);
+		const crop = crops.find(({ crop_key }) => crop_key === cropKey);
+		return {
+			plantingId,
+			cropKey,
+			cultivar: row?.cultivar ?? "",
+			bearingTrees: row?.bearing_trees ?? 0,
+			plantKind: crop?.plant_kind === "bush" ? "bush" : "tree",
+			bushelLb: crop?.bushel_lb ?? null,
+		};
+	});
 }

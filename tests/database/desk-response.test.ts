@@ -66,11 +66,11 @@ async function plantingOf(operationId: string): Promise<string> {
 	return rows[0].planting_id as string;
 }
 
-const submit = (responseId: string, version: number, answers: Answer[]) =>
+const submit = (responseId: string, version: number, plantingId: string, answers: Answer[]) =>
 	owner.query("insert into collect.submission (response_id, version, answers) values ($1, $2, $3)", [
 		responseId,
 		version,
-		JSON.stringify(answers),
+		JSON.stringify({ plantings: [{ plantingId, cropKey: "apple" }], answers }),
 	]);
 const given = (questionKey: string, value: Answer["value"], more: Partial<Answer> = {}): Answer => ({
 	questionKey,
@@ -92,8 +92,11 @@ describe("a response", () => {
 		const { rows } = await owner.query("select bushel_lb from directory.crop where crop_key = 'apple'");
 		const bushels = (n: number) => ({ plantingId, given: { text: String(n), unit: "bu" } });
 		const lb = (n: number) => n * rows[0].bushel_lb;
-		await submit(responseId, 1, [given("harvested", lb(10), bushels(10)), given("normal_crop", lb(10), bushels(10))]);
-		await submit(responseId, 2, [
+		await submit(responseId, 1, plantingId, [
+			given("harvested", lb(10), bushels(10)),
+			given("normal_crop", lb(10), bushels(10)),
+		]);
+		await submit(responseId, 2, plantingId, [
 			given("harvested", lb(12.5), bushels(12.5)),
 			{ ...given("normal_crop", null), plantingId, kind: "dont_know", given: null },
 			given("comment", "<b>Hail</b> on May 4"),
