@@ -1,6 +1,7 @@
 import type { Page } from "playwright-core";
 import { expect } from "vitest";
 import { axeFindings } from "#tests/helpers/browser.ts";
+import { httpVisitor } from "#tests/helpers/http-visitor.ts";
 import type { TestGrower } from "./orchards.ts";
 
 type Said = { open: string; begin: string; next: string; send: string; thanks: string };
@@ -78,21 +79,11 @@ export async function answerByHand(
 
 /** Answers by posting the same forms that a page without scripts posts. */
 export async function answerByForms(link: string, grower: TestGrower): Promise<void> {
-	const { origin } = new URL(link);
-	const jar = new Map<string, string>();
+	const visitor = httpVisitor(link);
 	const post = async (address: string, fields: Record<string, string>): Promise<string> => {
-		const response = await fetch(address, {
-			method: "POST",
-			redirect: "manual",
-			headers: { cookie: [...jar].map((pair) => pair.join("=")).join("; "), origin },
-			body: new URLSearchParams(fields),
-		});
-		for (const line of response.headers.getSetCookie()) {
-			const [, name, value] = /^([^=]+)=([^;]*)/.exec(line) ?? [];
-			if (name) jar.set(name, value ?? "");
-		}
-		expect(`${response.status} ${address}`).toBe(`303 ${address}`);
-		return new URL(response.headers.get("location") ?? "", address).href;
+		const { status, location } = await visitor.post(address, fields);
+		expect(`${status} ${address}`).toBe(`303 ${address}`);
+		return location;
 	};
 	const start = await post(link, {});
 	const planting = await post(start, {});

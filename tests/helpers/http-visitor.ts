@@ -1,0 +1,33 @@
+export type Answered = { status: number; location: string; text: string };
+
+/** Somebody without a browser, or without scripts in it: keeps cookies, posts forms, follows nothing by itself. */
+export function httpVisitor(baseUrl: string, language = "en") {
+	const jar = new Map<string, string>();
+	async function send(address: string, init: RequestInit = {}): Promise<Answered> {
+		const url = new URL(address, baseUrl);
+		const response = await fetch(url, {
+			...init,
+			redirect: "manual",
+			headers: {
+				cookie: [...jar].map((pair) => pair.join("=")).join("; "),
+				origin: url.origin,
+				"accept-language": language,
+			},
+		});
+		for (const line of response.headers.getSetCookie()) {
+			const [, name, value] = /^([^=]+)=([^;]*)/.exec(line) ?? [];
+			if (name) jar.set(name, value ?? "");
+		}
+		const location = response.headers.get("location");
+		return {
+			status: response.status,
+			location: location ? new URL(location, url).href : "",
+			text: await response.text(),
+		};
+	}
+	return {
+		get: (address: string) => send(address),
+		post: (address: string, fields: Record<string, string>) =>
+			send(address, { method: "POST", body: new URLSearchParams(fields) }),
+	};
+}
