@@ -316,6 +316,7 @@ describe("a closed survey", () => {
 		const answering = await answeringOf(grower, place);
 		expect([answering.isOpen, answering.answers.length]).toEqual([false, 3]);
 		expect(await answersIn(place.surveyId, "and question_key = 'harvested' and value = '4000'")).toBe(1);
-		expect(await count(owner, "collect.submission join collect.response using (response_id) where survey_id = $1", [place.surveyId])).toBe(0); // prettier-ignore
+		const submissions = "collect.submission join collect.response using (response_id) where survey_id = $1";
+		expect(await count(owner, submissions, [place.surveyId])).toBe(0);
 	});
 });
