@@ -1,5 +1,6 @@
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import type { Client } from "pg";
+import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { findAnswering, saveStep, startResponse } from "#app/collect/responses.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
@@ -231,6 +232,19 @@ describe("keeping a step", () => {
 		expect(await answersIn(place.surveyId)).toBe(0);
 	});
 
+	test("a save waits for one that is under way, and adds to what it left", async () => {
+		const { place, grower, step } = await askGrower(owner, associate);
+		let second: ReturnType<typeof typeStep> | undefined;
+		await asGrower(grower, async (trx) => {
+			const light = { questionKey: "bud_set", plantingId: null, kind: "given", value: "light", given: null } as const;
+			expect(await saveStep(trx, grower, place, "next_year", [light])).toBe("saved");
+			second = typeStep(grower, place, step, pounds(40, 4000, 4000));
+			await new Promise((wait) => setTimeout(wait, 300));
+		});
+		expect(await second).toBe("saved");
+		expect((await answeringOf(grower, place)).response?.draftVersion).toBe(2);
+	});
+
 	test("two devices that save different steps at once both keep theirs", async () => {
 		const { place, grower, step } = await askGrower(owner, associate);
 		const outcomes = await Promise.all([
@@ -255,6 +269,9 @@ describe("whose answers", () => {
 			expect(await asStranger((trx) => startResponse(trx, viewer, place, agree))).toBe("not_found");
 			expect(await asStranger((trx) => saveStep(trx, viewer, place, step, []))).toBe("not_found");
 		}
+		// And the other way round: a transaction that sees the place does not open it to one who has no right to it.
+		const seeing = await scopedTransaction({ kind: "network" }, (trx) => findAnswering(trx, stranger, place));
+		expect(seeing).toBeUndefined();
 		expect(await submit(stranger, place)).toBe("not_found");
 		expect(await answersIn(place.surveyId)).toBe(3);
 		expect((await answeringOf(grower, place)).answers).toHaveLength(3);

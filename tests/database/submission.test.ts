@@ -208,6 +208,23 @@ describe("once", () => {
 		expect(await leftBy(place.surveyId)).toMatchObject({ submissions: 1, mailings: ["receipt 1"], jobs: jobs + 1 });
 	});
 
+	test("the second of two waits for the first, and then finds that it is sent in", async () => {
+		const { place, grower, step } = await askGrower(owner, associate);
+		await typeStep(grower, place, step, pounds(40, 4000, 4000));
+		let second: ReturnType<typeof submit> | undefined;
+		let secondDone = false;
+		await asGrower(grower, async (trx) => {
+			expect(await submitResponse(trx, grower, place, "en")).toMatchObject({ outcome: "submitted" });
+			second = submit(grower, place).finally(() => {
+				secondDone = true;
+			});
+			await new Promise((wait) => setTimeout(wait, 300));
+			expect(secondDone).toBe(false);
+		});
+		expect(await second).toMatchObject({ outcome: "unchanged", version: 1 });
+		expect(await leftBy(place.surveyId)).toMatchObject({ submissions: 1, mailings: ["receipt 1"] });
+	});
+
 	test("sending in again without a change gives the same receipt and writes nothing", async () => {
 		const { place, grower, step } = await askGrower(owner, associate);
 		await typeStep(grower, place, step, pounds(40, 4000, 4000));
