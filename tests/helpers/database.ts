@@ -101,7 +101,7 @@ async function ensureTemplate(seed: "none" | "demo"): Promise<string> {
 }
 
 /** Runs a script of the product as the start command does, against one database. */
-async function runScript(script: string, database: string): Promise<void> {
+export async function runScript(script: string, database: string): Promise<void> {
 	const { ownerUrl, appUrl, readerUrl } = urlsOf(database);
 	const env = {
 		...process.env,
