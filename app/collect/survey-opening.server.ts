@@ -44,13 +44,17 @@ export async function closeSurvey(trx: Trx, viewer: Associate, surveyId: string)
 	return "closed" as const;
 }
 
-/** Moves the closing time of a survey that nobody closed by hand; links that still work live on until then. */
+/**
+ * Moves the closing time of a survey that nobody closed by hand; links that still work live on until then. Once its
+ * release is drafted it stays closed: an answer that came after would tell itself by the difference.
+ */
 export async function extendSurvey(trx: Trx, viewer: Associate, surveyId: string, closesAt: Date) {
 	const survey = await lockSurvey(trx, viewer, surveyId);
 	if (!survey) return "not_found" as const;
 	if (survey.closedAt) return "already_closed" as const;
 	if (!survey.mayManage) return "states_not_held" as const;
 	if (closesAt.getTime() === survey.closesAt.getTime()) return "unchanged" as const;
+	if (await hasDraftedRelease(trx, surveyId)) return "already_drafted" as const;
 	await trx.updateTable("collect.survey").set({ closes_at: closesAt }).where("survey_id", "=", surveyId).execute();
 	// Links of all the survey's states follow, also of those that the associate who made the survey no longer holds.
 	await setScope(trx, { kind: "network" });
@@ -66,6 +70,18 @@ export async function extendSurvey(trx: Trx, viewer: Associate, surveyId: string
 		to: closesAt.toISOString(),
 	});
 	return "extended" as const;
+}
+
+/** A draft that failed or was sent back holds nothing up: it is made anew after the survey has closed again. */
+async function hasDraftedRelease(trx: Trx, surveyId: string): Promise<boolean> {
+	const drafts = await trx
+		.selectFrom("collect.release_draft")
+		.select("release_draft_id")
+		.where("survey_id", "=", surveyId)
+		.where("status", "in", ["queued", "audited", "approved"])
+		.limit(1)
+		.execute();
+	return drafts.length > 0;
 }
 
 /** Two presses at once meet here: the second waits and then reads what the first did. */

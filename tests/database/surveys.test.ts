@@ -161,6 +161,25 @@ describe("an open survey", () => {
 		expect(rows).toEqual([{ expires_at: later }]);
 	});
 
+	test("stays closed once its release is drafted, and can be asked on where the draft was sent back", async () => {
+		await addOperation(owner, { state: "19" });
+		const surveyId = await create(iowa, ["19"]);
+		await open(iowa, surveyId);
+		await owner.query("update collect.survey set closes_at = now() - interval '1 hour' where survey_id = $1", [
+			surveyId,
+		]);
+		await owner.query(
+			"insert into collect.release_draft (survey_id, status, rules, drafted_by) values ($1, 'audited', '{}', $2)",
+			[surveyId, iowa.personId],
+		);
+		const later = new Date(Date.now() + 90 * 86_400_000);
+		const extend = () => asDesk(iowa, (trx) => extendSurvey(trx, iowa, surveyId, later));
+		const state = async () => (await asDesk(iowa, (trx) => findSurvey(trx, iowa, surveyId)))?.state;
+		expect([await extend(), await state()]).toEqual(["already_drafted", "closed"]);
+		await owner.query("update collect.release_draft set status = 'rejected' where survey_id = $1", [surveyId]);
+		expect([await extend(), await state()]).toEqual(["extended", "open"]);
+	});
+
 	test("counts only growers and answers of the viewer's states", async () => {
 		await addOperation(owner, { state: "55" });
 		const surveyId = await create(both, ["19", "55"]);

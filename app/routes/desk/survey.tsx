@@ -1,21 +1,27 @@
 import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
-import { data, Form, href, redirect } from "react-router";
+import { data, Form, href, Link, redirect } from "react-router";
 import { z } from "zod";
 import type { Route } from "./+types/survey";
 import { requireAssociate } from "#app/auth/guard.server.ts";
+import type { Trx } from "#app/auth/scope.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
 import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
-import { closeSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
-import { findSurvey } from "#app/collect/surveys.server.ts";
+import { wallClockOf } from "#app/collect/survey-closing.ts";
+import { ClosingForm } from "#app/collect/survey-draft.schema.ts";
+import { closeSurvey, extendSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
+import { findSurvey, readClosing } from "#app/collect/surveys.server.ts";
 import { Confirm } from "#app/components/confirm.tsx";
 import { DescriptionList } from "#app/components/description-list.tsx";
+import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TallyCount } from "#app/components/tally-count.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { parseForm } from "#app/lib/parse-form.ts";
+import { type FormValues, parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import { ClosingPart, closingLabels } from "./parts/closing-part.tsx";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
@@ -24,7 +30,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		return survey && { survey, mailings: await countMailings(trx, desk.viewer, params.surveyId) };
 	});
 	if (!found) throw refusal("survey_not_found");
-	return found;
+	return { ...found, closing: wallClockOf(found.survey.closesAt, found.survey.timeZone) };
 }
 
 const Step = z.discriminatedUnion("step", [
@@ -32,39 +38,66 @@ const Step = z.discriminatedUnion("step", [
 	z.object({ step: z.literal("close") }),
 	z.object({ step: z.literal("invite") }),
 	z.object({ step: z.literal("remind"), wave: z.coerce.number().int().min(1) }),
+	ClosingForm.extend({ step: z.literal("extend") }),
 ]);
+type Step = z.infer<typeof Step>;
 
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
 	const form = parseForm(Step, await request.formData());
-	if (!form.ok) throw refusal("form_not_understood");
-	const { viewer } = desk;
-	const { surveyId } = params;
-	const outcome = await desk.transaction(async (trx) => {
-		if (form.value.step === "open") return openSurvey(trx, viewer, surveyId);
-		if (form.value.step === "close") return closeSurvey(trx, viewer, surveyId);
-		if (form.value.step === "invite") return sendInvitations(trx, viewer, surveyId);
-		return sendReminders(trx, viewer, surveyId, form.value.wave);
-	});
+	if (!form.ok && form.values.step !== "extend") throw refusal("form_not_understood");
+	if (!form.ok) return data({ refused: null, values: form.values, problems: form.problems }, { status: 400 });
+
+	const { value: step } = form;
+	const outcome = await desk.transaction((trx) => takeStep(trx, desk.viewer, params.surveyId, step));
 	if (outcome === "not_found") throw refusal("survey_not_found");
-	if (typeof outcome === "string" && !["opened", "closed", "already_open", "already_closed"].includes(outcome)) {
-		return data({ refused: outcome }, { status: 409 });
-	}
+	const values: FormValues = step;
+	if (typeof outcome === "object" && "problem" in outcome)
+		return data({ refused: null, values, problems: [outcome.problem] }, { status: 400 });
+	if (typeof outcome === "string" && !settled[step.step].includes(outcome))
+		return data({ refused: outcome, values, problems: [] }, { status: 409 });
 	const toast =
 		typeof outcome === "string"
-			? { key: `desk:survey.toast.${form.value.step}` }
+			? { key: `desk:survey.toast.${step.step}` }
 			: { key: "desk:survey.toast.queued", values: { count: outcome.queued } };
 	context.get(sessionContext).flash("toast", toast);
 	return redirect(href("/desk/surveys/:surveyId", params), 303);
 }
 
+async function takeStep(trx: Trx, viewer: Associate, surveyId: string, step: Step) {
+	switch (step.step) {
+		case "open":
+			return openSurvey(trx, viewer, surveyId);
+		case "close":
+			return closeSurvey(trx, viewer, surveyId);
+		case "invite":
+			return sendInvitations(trx, viewer, surveyId);
+		case "remind":
+			return sendReminders(trx, viewer, surveyId, step.wave);
+		case "extend": {
+			const closing = await readClosing(trx, step, new Date());
+			return "problem" in closing ? closing : extendSurvey(trx, viewer, surveyId, closing.closesAt);
+		}
+	}
+}
+
+/** What leaves a step done, also where it had been done before: pressed twice, it says the same. */
+const settled: Record<Step["step"], string[]> = {
+	open: ["opened", "already_open"],
+	close: ["closed", "already_closed"],
+	invite: [],
+	remind: [],
+	extend: ["extended", "unchanged"],
+};
+
 export default function SurveyPage({ loaderData, actionData }: Route.ComponentProps) {
-	const { survey, mailings } = loaderData;
+	const { survey, mailings, closing } = loaderData;
 	const { t } = useTranslation("desk");
 	const format = useFormat();
 	return (
 		<>
-			{actionData && <Notice tone="attention">{t(`survey.refused.${actionData.refused}`)}</Notice>}
+			<ErrorSummary problems={actionData?.problems} labels={closingLabels(t)} />
+			{actionData?.refused && <Notice tone="attention">{t(`survey.refused.${actionData.refused}`)}</Notice>}
 			{survey.state !== "draft" && (
 				<TallyCount count={survey.answered} of={survey.inFrame} label={t("survey.answersIn")} />
 			)}
@@ -81,7 +114,17 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 						detail: format.list(survey.stateFips.map((state) => t(`common:state.${state}`))),
 					},
 					{ term: t("survey.invited"), detail: format.number(mailings.invited) },
-					{ term: t("survey.withoutAddress"), detail: format.number(mailings.withoutAddress) },
+					{
+						term: t("survey.withoutAddress"),
+						detail: (
+							<Link
+								to={`${href("/desk/surveys/:surveyId/responses", { surveyId: survey.surveyId })}?show=no_address`}
+								className="print-plain"
+							>
+								{format.number(mailings.withoutAddress)}
+							</Link>
+						),
+					},
 				]}
 			/>
 			<Section title={t("survey.next")}>
@@ -97,6 +140,14 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 				</Form>
 				{survey.state === "closed" && <p>{t("survey.closedNext")}</p>}
 			</Section>
+			{!survey.closedAt && survey.mayManage && (
+				<ClosingPart
+					closing={closing}
+					timeZone={survey.timeZone}
+					values={actionData?.values}
+					problems={actionData?.problems}
+				/>
+			)}
 		</>
 	);
 }
