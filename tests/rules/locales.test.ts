@@ -22,6 +22,7 @@ const sameInBoth: Record<string, string> = {
 	"common:unit.kg": "a unit's sign",
 	"common:unit.acres_": "the same word",
 	"common:unit.bushels_": "the trade's word, also in Spanish",
+	"grower:screen.unit.bu": "the trade's word, also in Spanish",
 	"desk:surveyNew.title": "a survey has a title in either language, whatever the associate's own",
 };
 /** Beginnings of keys whose pages are still to come. */
