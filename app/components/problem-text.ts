@@ -14,12 +14,10 @@ export function useProblemText() {
 			key,
 			typeof value === "number" ? format.number(value, decimalsOf(value)) : value,
 		]);
-		const context = detail.some(([key]) => key === "min" || key === "max" || key === "total") ? "limit" : undefined;
 		const values: Record<string, string | undefined> = {
 			...Object.fromEntries(detail),
 			label: lowerFirst(noun),
 			Label: upperFirst(noun),
-			context,
 		};
 		return String(t([`problem.${problem.code}`, "problem.wrong"], values));
 	};

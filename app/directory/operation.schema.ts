@@ -37,7 +37,7 @@ export const OperationInput = z.object({
 	ownerName: text(200),
 	countyFips: z.string({ error: "empty" }).regex(/^\d{5}$/, "unknown_county"),
 	contactName: text(200),
-	email: z.email("wrong").max(254, "too_long").optional(),
+	email: z.email("email_wrong").max(254, "too_long").optional(),
 	phone: z.string().trim().max(40, "too_long").optional(),
 	language: z.enum(["en", "es"], "choice_wrong"),
 });

@@ -1,9 +1,6 @@
 import type { Entry } from "./texts.ts";
 import type { Use, Uses } from "./uses.ts";
 
-/** A suffix that i18next adds by a value `context`, which no code writes as part of a key. */
-const contexts = ["limit"];
-
 type Entries = Map<string, Entry>;
 
 /** Uses of keys that no text stands behind, or that leave a text's placeholders unfilled. */
@@ -28,14 +25,9 @@ export function unusedKeys(uses: Uses, entries: Entries): string[] {
 	const patterns = uses.named.filter(({ parts }) => parts.length > 1);
 	return keys.filter((key) => {
 		const [namespace, bare] = key.split(":") as [string, string];
-		const spoken = contexts.map((context) => bare.replace(new RegExp(`_${context}$`), ""));
-		return ![bare, ...spoken].some(
-			(name) =>
-				exact.has(`${namespace}:${name}`) ||
-				exact.has(`*:${name}`) ||
-				(name.includes(".") && uses.mentioned.has(name)) ||
-				patterns.some((use) => fits(use, namespace) && fills(name, use.parts, (word) => uses.words.has(word))),
-		);
+		if (exact.has(key) || exact.has(`*:${bare}`)) return false;
+		if (bare.includes(".") && uses.mentioned.has(bare)) return false;
+		return !patterns.some((use) => fits(use, namespace) && fills(bare, use.parts, (word) => uses.words.has(word)));
 	});
 }
 
