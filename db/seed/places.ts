@@ -50,9 +50,9 @@ const hubs = [
 	{ longitude: -90.0, latitude: 38.8, strength: 0.9 },
 	{ longitude: -89.2, latitude: 37.6, strength: 0.6 },
 ] as const;
-const reachKm = 36;
+const reachKm = 48;
 /** Growers far from every hub: one here, two there. */
-const anywhere = 0.003;
+const anywhere = 0.0025;
 
 /** Counties with the weight of their share of the growers. */
 export function weighPlaces(places: readonly Place[]): [Place, number][] {
@@ -61,7 +61,7 @@ export function weighPlaces(places: readonly Place[]): [Place, number][] {
 			const { east, north } = offsetFrom(hub, place);
 			return sum + hub.strength * Math.exp(-(east ** 2 + north ** 2) / reachKm ** 2);
 		}, 0);
-		// Cut off, so that growers are gathered in a few counties of each hub and not thinly in all around it.
-		return [place, (near < 0.3 ? 0 : 0.5 + near / 4) + anywhere];
+		// Cut off and nearly alike inside, so that most counties of a hub have enough growers to be shown.
+		return [place, (near < 0.3 ? 0 : 0.6 + near / 5) + anywhere];
 	});
 }

@@ -83,7 +83,7 @@ test("a good part of the counties with apple growers is shown, so that the map i
 	);
 	expect(counties).toHaveLength(2);
 	for (const { shown, share } of counties) {
-		expect(shown).toBeGreaterThanOrEqual(20);
+		expect(shown).toBeGreaterThanOrEqual(30);
 		expect(share).toBeGreaterThan(1 / 3);
 	}
 });
