@@ -79,7 +79,7 @@ function HeaderCell<Row>({ column, sort }: HeaderCellProps<Row>) {
 			scope="col"
 			aria-sort={sorted && (sorted === "asc" ? "ascending" : "descending")}
 			className={classes(
-				"sticky top-0 z-10 bg-paper px-3 py-2 align-bottom font-bold shadow-[inset_0_-1px_0_var(--color-line)]",
+				"sticky top-0 z-10 bg-paper px-3 py-2 align-bottom font-bold max-sm:px-2 shadow-[inset_0_-1px_0_var(--color-line)]",
 				column.numeric ? "text-right" : "text-left",
 			)}
 		>
@@ -105,10 +105,10 @@ function HeaderCell<Row>({ column, sort }: HeaderCellProps<Row>) {
 type BodyCellProps<Row> = { column: Column<Row>; first: boolean; children: ReactNode };
 
 function BodyCell<Row>({ column, first, children }: BodyCellProps<Row>) {
-	const look = classes("px-3 py-2 align-top", column.numeric ? "text-right" : "text-left");
+	const look = classes("px-3 py-2 align-top max-sm:px-2", column.numeric ? "text-right" : "text-left");
 	if (!first) return <td className={look}>{children}</td>;
 	return (
-		<th scope="row" className={classes(look, "min-w-36 font-normal")}>
+		<th scope="row" className={classes(look, "min-w-24 font-normal sm:min-w-36")}>
 			{children}
 		</th>
 	);

@@ -40,7 +40,13 @@ export function Figure(props: FigureProps) {
 				</span>
 			)}
 			{steadiness && (headline || steadiness !== "steady") && (
-				<span className={classes("block text-attention", headline ? "mt-1 text-base" : "text-xs")}>
+				<span
+					className={classes(
+						"block",
+						steadiness === "steady" ? "text-quiet" : "text-attention",
+						headline ? "mt-1 text-base" : "text-xs",
+					)}
+				>
 					{t(`steadiness.${steadiness}`)}
 				</span>
 			)}

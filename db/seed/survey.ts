@@ -49,7 +49,7 @@ async function makeSurvey(trx: Trx, associate: Associate, season: Season, now: D
 			survey_id: surveyId,
 			form_version_id: formVersionId,
 			season: season.season,
-			title: JSON.stringify({ en: `After harvest ${season.season}`, es: `Después de la cosecha ${season.season}` }),
+			title: JSON.stringify({ en: "After harvest", es: "Después de la cosecha" }),
 			crop_keys: [...cropKeys],
 			closes_at: stillToCome,
 			created_by: associate.personId,

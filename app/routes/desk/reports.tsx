@@ -26,7 +26,7 @@ export async function loader({ context }: Route.LoaderArgs) {
 	]);
 	return {
 		reports: reports.map(toRow),
-		releases: releases.map(({ releaseId, number, title }) => ({ releaseId, number, title })),
+		releases: releases.map(({ releaseId, number, season, title }) => ({ releaseId, number, season, title })),
 	};
 }
 
@@ -69,9 +69,9 @@ export default function DeskReports({ loaderData: { reports, releases }, actionD
 							legend={t("report_editor.release")}
 							help={t("report_editor.releaseHelp")}
 							problem={problem}
-							options={releases.map(({ releaseId, number, title }) => ({
+							options={releases.map(({ releaseId, number, season, title }) => ({
 								value: releaseId,
-								label: t("data.named", { number, title: wordsIn(title, i18n.language) }),
+								label: t("data.named", { number, season, title: wordsIn(title, i18n.language) }),
 							}))}
 						/>
 						<Button>{t("report_editor.startButton")}</Button>

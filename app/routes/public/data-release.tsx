@@ -32,7 +32,11 @@ export default function DataRelease({ loaderData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("public");
 	const { release, measures, crops, address } = loaderData;
 	const format = useFormat();
-	const title = t("data.named", { number: release.number, title: wordsIn(release.title, i18n.language) });
+	const title = t("data.named", {
+		number: release.number,
+		title: wordsIn(release.title, i18n.language),
+		season: release.season,
+	});
 	const year = new Date(release.publishedAt).getUTCFullYear();
 	return (
 		<Page

@@ -43,9 +43,9 @@ function useReleaseColumns(): Column<Release>[] {
 		{
 			key: "title",
 			header: t("data.release"),
-			cell: ({ number, title }) => (
+			cell: ({ number, season, title }) => (
 				<Link to={href("/data/:release", { release: `${number}` })} className="print-plain">
-					{t("data.named", { number, title: wordsIn(title, i18n.language) })}
+					{t("data.named", { number, season, title: wordsIn(title, i18n.language) })}
 				</Link>
 			),
 		},
