@@ -1,9 +1,9 @@
+import type { LogAction } from "./log-actions.ts";
 import type { Trx } from "./scope.server.ts";
 
-export type LoggedEvent = {
+export type NewEvent = {
 	personId: string | null;
-	/** `subject.verb`, as in `survey.opened`. */
-	action: string;
+	action: LogAction;
 	subjectKind: string;
 	subjectId: string;
 	stateFips?: string | null;
@@ -12,7 +12,7 @@ export type LoggedEvent = {
 };
 
 /** Writes who did what to which thing, in the transaction that does it. The table takes no update and no delete. */
-export async function logEvent(trx: Trx, event: LoggedEvent): Promise<void> {
+export async function logEvent(trx: Trx, event: NewEvent): Promise<void> {
 	await trx
 		.insertInto("log.event")
 		.values({

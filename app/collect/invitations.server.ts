@@ -2,6 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
+import type { LogAction } from "#app/auth/log-actions.ts";
 import { queueJob } from "#app/jobs/queue.server.ts";
 import { replacePersonalLinks } from "./personal-link.server.ts";
 import { findSurvey, isId } from "./surveys.server.ts";
@@ -147,7 +148,7 @@ function queueMail(trx: Trx, mailingId: string): Promise<void> {
 function note(
 	trx: Trx,
 	viewer: Associate,
-	action: string,
+	action: LogAction,
 	subjectKind: string,
 	subjectId: string,
 	detail: Record<string, unknown>,

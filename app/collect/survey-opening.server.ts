@@ -3,6 +3,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import { setScope } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
+import type { LogAction } from "#app/auth/log-actions.ts";
 import { sizeClassOf, stratumKeyOf } from "./frame.ts";
 import { findSurvey } from "./surveys.server.ts";
 
@@ -143,6 +144,6 @@ function inParts<T>(rows: T[], size = 2_000): T[][] {
 	return Array.from({ length: Math.ceil(rows.length / size) }, (_, part) => rows.slice(part * size, (part + 1) * size));
 }
 
-function note(trx: Trx, viewer: Associate, action: string, surveyId: string, detail: Record<string, unknown>) {
+function note(trx: Trx, viewer: Associate, action: LogAction, surveyId: string, detail: Record<string, unknown>) {
 	return logEvent(trx, { personId: viewer.personId, action, subjectKind: "survey", subjectId: surveyId, detail });
 }

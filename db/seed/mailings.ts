@@ -1,5 +1,6 @@
 import { sql } from "kysely";
 import { logEvent } from "#app/auth/event-log.server.ts";
+import type { LogAction } from "#app/auth/log-actions.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { Season } from "./seasons.ts";
@@ -57,7 +58,7 @@ async function linkInvitations(trx: Trx, { surveyId, closesAt }: Season): Promis
 		where m.survey_id = ${surveyId} and m.kind = 'invitation' and m.sent_at is not null`.execute(trx);
 }
 
-async function note(trx: Trx, { personId }: Associate, surveyId: string, action: string, at: Date): Promise<void> {
+async function note(trx: Trx, { personId }: Associate, surveyId: string, action: LogAction, at: Date): Promise<void> {
 	await logEvent(trx, { personId, action, subjectKind: "survey", subjectId: surveyId });
 	await sql`update log.event set happened_at = ${at} where event_id = (select max(event_id) from log.event)`.execute(
 		trx,

@@ -1,6 +1,7 @@
 import { sql } from "kysely";
 import { z } from "zod";
 import { logEvent } from "#app/auth/event-log.server.ts";
+import type { LogAction } from "#app/auth/log-actions.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { missingWords, ReportContent } from "../report.ts";
@@ -143,7 +144,7 @@ export function isOwn(report: Pick<DeskReport, "createdBy" | "editedBy">, viewer
 	return report.createdBy === viewer.personId || report.editedBy.includes(viewer.personId);
 }
 
-async function log(trx: Trx, viewer: { personId: string }, action: string, report: DeskReport): Promise<void> {
+async function log(trx: Trx, viewer: { personId: string }, action: LogAction, report: DeskReport): Promise<void> {
 	await logEvent(trx, {
 		personId: viewer.personId,
 		action,

@@ -1,0 +1,26 @@
+import { z } from "zod";
+
+/** Everything that is logged, by subject. Each has its words in `network:log.action.<subject>.<verb>`. */
+export const logActions = {
+	auth: ["signed_in", "sign_in_failed"],
+	grant: ["first_coordinator", "given", "revoked"],
+	access: ["requested", "approved", "declined"],
+	survey: ["created", "opened", "extended", "closed", "invited", "reminded", "link_replaced"],
+	response: ["started", "submitted", "amended"],
+	release: ["drafted", "rejected", "published"],
+	report: ["started", "submitted", "sent_back", "published"],
+} as const;
+
+type Actions = typeof logActions;
+/** `subject.verb`, as in `survey.opened`. */
+export type LogAction = { [Subject in keyof Actions]: `${Subject}.${Actions[Subject][number]}` }[keyof Actions];
+export type LogSubject = keyof Actions;
+export const logSubjects = Object.keys(logActions) as LogSubject[];
+
+/** `?q=&show=&page=` of the log. A wrong or missing part falls back; nothing typed is an error. */
+export const LogQuery = z.object({
+	q: z.string().trim().max(200).catch(""),
+	show: z.enum(["all", ...logSubjects]).catch("all"),
+	page: z.coerce.number().int().min(1).max(1_000_000).catch(1),
+});
+export type LogQuery = z.infer<typeof LogQuery>;
