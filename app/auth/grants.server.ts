@@ -1,18 +1,20 @@
 import { z } from "zod";
 import { logEvent } from "./event-log.server.ts";
-import type { Trx } from "./scope.server.ts";
+import { setScope, type Trx } from "./scope.server.ts";
 import type { Coordinator } from "./viewer.ts";
 
 export const GrantForm = z.discriminatedUnion("step", [
 	z.object({
 		step: z.literal("grant"),
 		personId: z.uuid("choice_wrong"),
-		role: z.enum(["associate", "coordinator", "researcher"], { error: "choice_wrong" }),
+		role: z.enum(["associate", "grower", "coordinator", "researcher"], { error: "choice_wrong" }),
 		/** Read for associates only, whose grant is for one state. */
 		stateFips: z
 			.string()
 			.regex(/^\d{2}$/, "choice_wrong")
 			.optional(),
+		/** Read for growers only: the operation's id, or its e-mail address where no other has the same. */
+		operation: z.string().trim().max(254, "too_long").optional(),
 	}),
 	z.object({ step: z.literal("revoke"), roleGrantId: z.uuid("choice_wrong") }),
 ]);
@@ -28,17 +30,69 @@ export async function listPeople(trx: Trx, _viewer: Coordinator) {
 		.execute();
 	const grants = await trx
 		.selectFrom("auth.role_grant")
-		.select(["role_grant_id as roleGrantId", "person_id as personId", "role", "state_fips as stateFips"])
+		.select([
+			"role_grant_id as roleGrantId",
+			"person_id as personId",
+			"role",
+			"state_fips as stateFips",
+			"operation_id as operationId",
+		])
 		.where("revoked_at", "is", null)
 		.orderBy("role")
 		.orderBy("state_fips")
 		.execute();
+	const names = await operationNames(
+		trx,
+		grants.flatMap((grant) => grant.operationId ?? []),
+	);
 	return people.map(({ personId, displayName, email }) => ({
 		personId,
 		displayName,
 		email,
-		grants: grants.filter((grant) => grant.personId === personId),
+		grants: grants
+			.filter((grant) => grant.personId === personId)
+			.map((grant) => ({ ...grant, operationName: names.get(grant.operationId ?? "") ?? null })),
 	}));
+}
+
+/**
+ * Works with the directory of all states. A coordinator, who holds none, grants for operations and so must be told which
+ * they are; nothing of them but that comes out.
+ */
+async function acrossStates<T>(trx: Trx, work: () => Promise<T>): Promise<T> {
+	await setScope(trx, { kind: "network" });
+	const found = await work();
+	await setScope(trx, { kind: "desk", stateFips: [] });
+	return found;
+}
+
+async function operationNames(trx: Trx, ids: string[]): Promise<Map<string, string>> {
+	if (ids.length === 0) return new Map();
+	const rows = await acrossStates(trx, () =>
+		trx
+			.selectFrom("directory.operation")
+			.select(["operation_id", "name"])
+			.where((eb) => eb("operation_id", "=", eb.fn.any(eb.val(ids))))
+			.execute(),
+	);
+	return new Map(rows.map((row) => [row.operation_id, row.name]));
+}
+
+/** The one operation that an id or an e-mail address names. */
+async function findOperationNamed(trx: Trx, idOrEmail: string) {
+	const isId = z.guid().safeParse(idOrEmail).success;
+	const rows = await acrossStates(trx, () =>
+		trx
+			.selectFrom("directory.operation")
+			.select(["operation_id", "state_fips"])
+			.where((eb) =>
+				isId ? eb("operation_id", "=", idOrEmail) : eb(eb.fn("lower", ["email"]), "=", idOrEmail.toLowerCase()),
+			)
+			.limit(2)
+			.execute(),
+	);
+	if (rows.length > 1) return "operation_several" as const;
+	return rows[0] ?? ("operation_unknown" as const);
 }
 
 export async function listStates(trx: Trx): Promise<string[]> {
@@ -46,7 +100,7 @@ export async function listStates(trx: Trx): Promise<string[]> {
 	return rows.map((row) => row.state_fips);
 }
 
-/** Grants a role once: the same grant again changes nothing. A state that the network does not cover is refused. */
+/** Grants a role once: the same grant again changes nothing. A state or an operation that is not there is refused. */
 export async function grantRole(trx: Trx, viewer: Coordinator, grant: NewGrant) {
 	const person = await trx
 		.selectFrom("auth.person")
@@ -54,12 +108,11 @@ export async function grantRole(trx: Trx, viewer: Coordinator, grant: NewGrant) 
 		.where("person_id", "=", grant.personId)
 		.executeTakeFirst();
 	if (!person) return "not_found" as const;
-	const stateFips = grant.role === "associate" ? (grant.stateFips ?? null) : null;
-	if (grant.role === "associate" && (!stateFips || !(await listStates(trx)).includes(stateFips)))
-		return "state_needed" as const;
+	const place = await placeOf(trx, grant);
+	if (typeof place === "string") return place;
 	const row = await trx
 		.insertInto("auth.role_grant")
-		.values({ person_id: grant.personId, role: grant.role, state_fips: stateFips, granted_by: viewer.personId })
+		.values({ person_id: grant.personId, role: grant.role, ...place.column, granted_by: viewer.personId })
 		.onConflict((conflict) => conflict.doNothing())
 		.returning("role_grant_id")
 		.executeTakeFirst();
@@ -69,10 +122,23 @@ export async function grantRole(trx: Trx, viewer: Coordinator, grant: NewGrant) 
 		action: "grant.given",
 		subjectKind: "person",
 		subjectId: grant.personId,
-		stateFips,
+		stateFips: place.stateFips,
 		detail: { role: grant.role },
 	});
 	return "granted" as const;
+}
+
+/** What a grant is for: an associate's state, a grower's operation, for others the whole network. */
+async function placeOf(trx: Trx, { role, stateFips, operation }: NewGrant) {
+	if (role === "associate") {
+		if (!stateFips || !(await listStates(trx)).includes(stateFips)) return "state_needed" as const;
+		return { column: { state_fips: stateFips }, stateFips };
+	}
+	if (role !== "grower") return { column: {}, stateFips: null };
+	if (!operation) return "operation_needed" as const;
+	const found = await findOperationNamed(trx, operation);
+	if (typeof found === "string") return found;
+	return { column: { operation_id: found.operation_id }, stateFips: found.state_fips };
 }
 
 /** Ends a grant at once. The last coordinator's stays, since nobody could give it back. */

@@ -87,7 +87,6 @@ const guards: Record<string, string[]> = {
 const asksNobody: Record<string, string> = {
 	"app/routes/grower/layout.tsx": "the frame of the grower's pages, which shows nothing of anybody",
 	"app/routes/grower/link.tsx": "a personal link's own token says who asks",
-	"app/routes/network/log.tsx": "still empty",
 };
 
 const areaOf = (file: string) => file.split("/")[2]!;

@@ -12,7 +12,8 @@ import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
-import { parseForm } from "#app/lib/parse-form.ts";
+import { TextField } from "#app/components/text-field.tsx";
+import { type FormValues, parseForm, type Problem } from "#app/lib/parse-form.ts";
 
 export async function loader({ context }: Route.LoaderArgs) {
 	const network = requireCoordinator(context);
@@ -33,11 +34,20 @@ export async function action({ context, request }: Route.ActionArgs) {
 			? grantRole(trx, network.viewer, value)
 			: revokeGrant(trx, network.viewer, value.roleGrantId),
 	);
-	if (outcome !== "granted" && outcome !== "revoked") {
-		return data({ values: {} as Record<string, unknown>, problems: [], refused: outcome }, { status: 409 });
-	}
+	const values: FormValues = value;
+	const problem = problemOf(outcome);
+	if (problem) return data({ values, problems: [problem], refused: null }, { status: 400 });
+	if (outcome !== "granted" && outcome !== "revoked")
+		return data({ values, problems: [], refused: outcome }, { status: 409 });
 	context.get(sessionContext).flash("toast", { key: `network:people.toast.${outcome}` });
 	return redirect(href("/network"), 303);
+}
+
+/** What can be mended in a field is said there. */
+function problemOf(outcome: string): Problem | undefined {
+	if (outcome === "operation_needed") return { field: "operation", code: "empty" };
+	if (outcome === "operation_unknown" || outcome === "operation_several") return { field: "operation", code: outcome };
+	return undefined;
 }
 
 export default function People({ loaderData, actionData }: Route.ComponentProps) {
@@ -47,7 +57,12 @@ export default function People({ loaderData, actionData }: Route.ComponentProps)
 		<Page title={t("people.title")} lead={t("people.lead")}>
 			<ErrorSummary
 				problems={actionData?.problems}
-				labels={{ personId: t("people.person"), role: t("people.role"), stateFips: t("people.state") }}
+				labels={{
+					personId: t("people.person"),
+					role: t("people.role"),
+					stateFips: t("people.state"),
+					operation: t("people.operation"),
+				}}
 			/>
 			{actionData?.refused && <Notice tone="attention">{t(`people.refused.${actionData.refused}`)}</Notice>}
 			<DataTable
@@ -86,7 +101,11 @@ type Grant = Route.ComponentProps["loaderData"]["people"][number]["grants"][numb
 function GrantLine({ grant }: { grant: Grant }) {
 	const { t } = useTranslation("network");
 	const role = t(`common:role.${grant.role}`);
-	const words = grant.stateFips ? t("people.roleIn", { role, state: t(`common:state.${grant.stateFips}`) }) : role;
+	const words = grant.stateFips
+		? t("people.roleIn", { role, state: t(`common:state.${grant.stateFips}`) })
+		: grant.operationName
+			? t("people.roleFor", { role, operation: grant.operationName })
+			: role;
 	return (
 		<Form method="post" className="mb-2 flex flex-wrap items-center gap-3">
 			<span>{words}</span>
@@ -130,7 +149,7 @@ function GrantPart({ people, states, actionData }: GrantPartProps) {
 				<ChoiceField
 					{...field("role")}
 					legend={t("people.role")}
-					options={(["associate", "coordinator", "researcher"] as const).map((role) => ({
+					options={(["associate", "grower", "coordinator", "researcher"] as const).map((role) => ({
 						value: role,
 						label: t(`common:role.${role}`),
 					}))}
@@ -140,6 +159,16 @@ function GrantPart({ people, states, actionData }: GrantPartProps) {
 					legend={t("people.state")}
 					help={t("people.stateHelp")}
 					options={states.map((state) => ({ value: state, label: t(`common:state.${state}`) }))}
+				/>
+				<TextField
+					name="operation"
+					label={t("people.operation")}
+					help={t("people.operationHelp")}
+					optional
+					maxLength={254}
+					size="full"
+					defaultValue={typeof values.operation === "string" ? values.operation : ""}
+					problem={actionData?.problems.find((problem) => problem.field === "operation")}
 				/>
 				<div>
 					<Button name="step" value="grant">
