@@ -106,10 +106,11 @@ async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | un
 	};
 }
 
+/** Who was asked and who answered. Answers begun and never sent in are in no figure, so they count as none. */
 async function countResponses(trx: Trx, surveyId: string): Promise<ReleaseMethod["states"]> {
 	const { rows } = await sql<{ stateFips: string; asked: number; answered: number }>`
 		select state_fips as "stateFips", count(*)::int as asked,
-			(count(*) filter (where disposition in ('complete', 'partial')))::int as answered
+			(count(*) filter (where disposition = 'complete'))::int as answered
 		from collect.frame_operation where survey_id = ${surveyId} group by state_fips order by state_fips`.execute(trx);
 	return rows;
 }

@@ -216,3 +216,19 @@ test("a scope ends with its transaction, kept or taken back, on the one connecti
 	expect((await seen.execute(app)).rows).toEqual([after]);
 	await app.transaction().execute(async (trx) => expect((await seen.execute(trx)).rows).toEqual([after]));
 });
+
+describe("a state that is only claimed", () => {
+	test.each(["collect.response", "collect.fact"])(
+		"%s of another state's operation is not written under the desk's own state",
+		async (table) => {
+			const { rows } = await owner.query(`select to_jsonb(t) as row from ${table} t where operation_id = $1`, [
+				holders.wisconsin.operation_id,
+			]);
+			const claimed = { ...rows[0].row, state_fips: "19", response_id: crypto.randomUUID() };
+			const copy = `insert into ${table} select * from jsonb_populate_record(null::${table}, $1)`;
+			expect(await attempt({ kind: "desk", stateFips: ["19"] }, copy, [claimed])).toBe(refused);
+			expect(await attempt({ kind: "network" }, copy, [claimed])).toBe(refused);
+			expect(await attempt({ kind: "network" }, copy, [{ ...claimed, state_fips: "55" }])).toBe(keyTaken);
+		},
+	);
+});

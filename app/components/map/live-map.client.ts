@@ -24,7 +24,8 @@ export type LiveMapOptions = {
 	onChoose: (fips: string) => void;
 };
 export type LiveMap = {
-	show: (figures: FiguresAnswer, hue: Hue) => void;
+	/** Resolves when the figures are painted whole: until then a slow machine shows half a map. */
+	show: (figures: FiguresAnswer, hue: Hue) => Promise<void>;
 	/** Outlines every county drawn from an area; null for none. */
 	mark: (areaKey: string | null) => void;
 	/** The county that lies next in a direction, so that arrow keys walk over the map. */
@@ -90,6 +91,7 @@ function controls(map: LibraryMap, geometry: GeometryAnswer, bounds: [number, nu
 		show(figures, hue) {
 			shown = { figures, hue };
 			paint();
+			return new Promise((resolve) => map.once("idle", () => resolve()));
 		},
 		mark(areaKey) {
 			const counties = Object.entries(shown?.figures.areaOfCounty ?? {}).flatMap(([fips, area]) =>

@@ -59,12 +59,24 @@ export function useLiveMap(container: RefObject<HTMLElement | null>, wanted: Wan
 	}, [wanted.figuresAddress, attempt]);
 
 	const current = shown?.address === wanted.figuresAddress ? shown.figures : null;
+	const [painted, setPainted] = useState<LiveMap | null>(null);
 	useEffect(() => {
-		if (live && current) live.show(current, wanted.hue);
+		if (!live || !current) return;
+		let gone = false;
+		void live.show(current, wanted.hue).then(() => gone || setPainted(live));
+		return () => {
+			gone = true;
+		};
 	}, [live, current, wanted.hue]);
 
 	const noFigures = !current && missed?.address === wanted.figuresAddress && missed.attempt === attempt;
-	const state: LiveMapState = noMap ? "no_map" : noFigures ? "no_figures" : live && current ? "ready" : "drawing";
+	const state: LiveMapState = noMap
+		? "no_map"
+		: noFigures
+			? "no_figures"
+			: live && current && painted === live
+				? "ready"
+				: "drawing";
 	return { state, live, figures: current, retry: () => setAttempt((before) => before + 1) };
 }
 
