@@ -53,15 +53,19 @@ test("a weight is told in the unit in which it was given", () => {
 		value: 525,
 		unit: "lb",
 	});
+	expect(shown(given("harvested", 1520, { text: "40", unit: "crate", crateLb: 38 }, "p1"))).toEqual({
+		kind: "quantity",
+		value: 40,
+		unit: "crate",
+		crateLb: 38,
+	});
 	expect(shown(weight(525, "bin"))).toEqual({ kind: "quantity", value: 525, unit: "lb" });
 });
 
 test("each type of answer is told as what it is", () => {
-	expect(shown(given("bearing_trees", 40, { text: "40" }, "p1"))).toEqual({
-		kind: "quantity",
-		value: 40,
-		unit: "trees",
-	});
+	const trees = given("bearing_trees", 40, { text: "40" }, "p1");
+	expect(shown(trees)).toEqual({ kind: "quantity", value: 40, unit: "tree" });
+	expect(shown(trees, { ...planting, plantKind: "bush" })).toEqual({ kind: "quantity", value: 40, unit: "bush" });
 	expect(shown(given("cause_freeze", 75, { text: "75%" }))).toEqual({ kind: "quantity", value: 75, unit: "percent" });
 	expect(shown(given("first_harvest", "2031-09-01"))).toEqual({ kind: "day", day: "2031-09-01" });
 	expect(shown(given("bud_set", "none"))).toEqual({ kind: "words", words: [{ en: "Hardly any", es: "Casi ninguna" }] });

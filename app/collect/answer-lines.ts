@@ -1,10 +1,12 @@
 import type { Words } from "#app/lib/words.ts";
 import type { Answer, FormDefinition, Question } from "./form.ts";
 import { answersByPlace, listAsked, placeOf, type PlantingAsked } from "./steps.ts";
-import { fromPounds, isMassUnit, type MassUnit } from "./units.ts";
+import { fromCanonical, type Unit, unitFamilyOf, unitGiven } from "./units.ts";
 
+export type ShownUnit = Unit | "tree" | "bush" | "plants" | "percent" | "count";
 export type ShownAnswer =
-	| { kind: "quantity"; value: number; unit: MassUnit | "trees" | "percent" | "count" }
+	/** `crateLb` is what one crate holds, where the unit is the grower's own crate. */
+	| { kind: "quantity"; value: number; unit: ShownUnit; crateLb?: number }
 	| { kind: "day"; day: string }
 	| { kind: "words"; words: Words[] }
 	| { kind: "text"; text: string }
@@ -20,7 +22,7 @@ export type AnswerGroup = {
 
 /**
  * What a review page, a receipt or the desk lists: every question that is asked, step by step, with what was answered,
- * weights in the unit in which they were given.
+ * amounts in the unit in which they were given.
  */
 export function listAnswerLines(
 	definition: FormDefinition,
@@ -35,23 +37,19 @@ export function listAnswerLines(
 		lines: questions.map((question) => ({
 			questionKey: question.key,
 			text: question.text,
-			shown: shownAs(
-				question,
-				byPlace.get(placeOf(question.key, step.planting?.plantingId ?? null)),
-				step.planting?.bushelLb ?? null,
-			),
+			shown: shownAs(question, byPlace.get(placeOf(question.key, step.planting?.plantingId ?? null)), step.planting),
 		})),
 	}));
 }
 
-function shownAs(question: Question, answer: Answer | undefined, bushelLb: number | null): ShownAnswer {
+function shownAs(question: Question, answer: Answer | undefined, planting: PlantingAsked | null): ShownAnswer {
 	if (answer === undefined) return { kind: "none" };
 	if (answer.kind !== "given") return { kind: answer.kind };
 	const { value } = answer;
 	switch (question.type) {
 		case "number":
 		case "percent":
-			return typeof value === "number" ? quantity(question, value, answer.given?.unit, bushelLb) : { kind: "none" };
+			return typeof value === "number" ? quantity(question, value, answer.given, planting) : { kind: "none" };
 		case "date":
 			return { kind: "day", day: String(value) };
 		case "choice":
@@ -72,14 +70,20 @@ function shownAs(question: Question, answer: Answer | undefined, bushelLb: numbe
 function quantity(
 	question: Extract<Question, { type: "number" | "percent" }>,
 	value: number,
-	givenIn: string | undefined,
-	bushelLb: number | null,
+	given: Answer["given"],
+	planting: PlantingAsked | null,
 ): ShownAnswer {
 	if (question.type === "percent") return { kind: "quantity", value, unit: "percent" };
-	if (question.unitFamily === "trees") return { kind: "quantity", value, unit: "trees" };
-	if (question.unitFamily !== "mass") return { kind: "quantity", value, unit: "count" };
-	// A crop that lost its bushel weight since is told in pounds, as it is kept.
-	const unit = isMassUnit(givenIn) && (givenIn !== "bu" || bushelLb !== null) ? givenIn : "lb";
+	const family = unitFamilyOf(question);
+	if (family === undefined) {
+		const unit = question.unitFamily === "trees" ? (planting?.plantKind ?? "plants") : "count";
+		return { kind: "quantity", value, unit };
+	}
+	const bushelLb = planting?.bushelLb ?? null;
+	const sizes = { bushelLb, crateLb: given?.crateLb ?? null };
+	const unit = unitGiven(given, family, bushelLb);
 	// Dividing what was multiplied can leave 12.500000000000002.
-	return { kind: "quantity", value: Number(fromPounds(value, unit, bushelLb).toPrecision(12)), unit };
+	const amount = Number(fromCanonical(value, unit, sizes).toPrecision(12));
+	if (unit !== "crate") return { kind: "quantity", value: amount, unit };
+	return { kind: "quantity", value: amount, unit, crateLb: sizes.crateLb ?? undefined };
 }

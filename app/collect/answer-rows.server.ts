@@ -1,4 +1,5 @@
 import { isDeepStrictEqual } from "node:util";
+import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Answer } from "./form.ts";
 import { answersByPlace, placeOf, type PlantingAsked } from "./steps.ts";
@@ -112,4 +113,20 @@ export async function listPlantingsAsked(
 			plantKind: row.plant_kind === "bush" ? "bush" : "tree",
 			bushelLb: row.bushel_lb,
 		}));
+}
+
+/** What the operation's crates held when it last told, by crop: what is known is not asked again. */
+export async function listCrates(trx: Trx, operationId: string): Promise<Record<string, number>> {
+	const rows = await trx
+		.selectFrom("collect.answer as a")
+		.innerJoin("collect.response as r", "r.response_id", "a.response_id")
+		.innerJoin("directory.planting as p", "p.planting_id", "a.planting_id")
+		.where("r.operation_id", "=", operationId)
+		.where(sql<boolean>`a.given ? 'crateLb'`)
+		.distinctOn("p.crop_key")
+		.orderBy("p.crop_key")
+		.orderBy("a.answered_at", "desc")
+		.select(["p.crop_key", sql<number>`(a.given ->> 'crateLb')::float8`.as("crateLb")])
+		.execute();
+	return Object.fromEntries(rows.map(({ crop_key, crateLb }) => [crop_key, crateLb]));
 }

@@ -43,7 +43,7 @@ export const Question = z.discriminatedUnion("type", [
 	z.object({
 		...questionBase,
 		type: z.literal("number"),
-		unitFamily: z.enum(["mass", "area", "temperature", "trees", "count"]),
+		unitFamily: z.enum(["mass", "area", "temperature", "length", "trees", "count"]),
 		limits,
 		/** Filled in from the directory, so that what is known is confirmed and not asked again. */
 		prefill: z.enum(["bearing_trees"]).optional(),
@@ -135,13 +135,14 @@ export const FormDefinition = z.object({
 export type FormDefinition = z.infer<typeof FormDefinition>;
 
 /**
- * One answer as stored. `value` is canonical (pounds, trees, percent, ISO date, option key, text); `given` keeps what was
- * typed and its unit. Don't know and refused have no value; a question not asked has no answer at all; zero is a value.
+ * One answer as stored. `value` is canonical (pounds, acres, degrees Fahrenheit, feet, plants, percent, ISO date, option
+ * key, text); `given` keeps what was typed and its unit, with the weight of a crate where that is the unit. Don't know and
+ * refused have no value; a question not asked has no answer at all; zero is a value.
  */
 export type Answer = {
 	questionKey: string;
 	plantingId: string | null;
 	kind: "given" | "dont_know" | "refused";
 	value: number | string | string[] | null;
-	given: { text: string; unit?: string } | null;
+	given: { text: string; unit?: string; crateLb?: number } | null;
 };

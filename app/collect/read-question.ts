@@ -1,15 +1,13 @@
 import type { Answer, Question } from "./form.ts";
 import { postedChoices, postedText, type StepValues } from "./posted.ts";
-import { parseTypedNumber } from "./typed-number.ts";
+import { readNumber } from "./read-number.ts";
 import { cleanText, lengthOf } from "./typed-text.ts";
-import { fromPounds, isMassUnit, type MassUnit, massUnitsFor, toPounds } from "./units.ts";
 
 export type ReadSettings = { language: "en" | "es"; season: number; today: string };
 /** An answer, null where nothing was said, or what is to be mended. */
-export type Reading =
-	| { answer: Pick<Answer, "kind" | "value" | "given"> | null }
-	| { code: string; detail?: Record<string, string | number> };
-type NumberQuestion = Extract<Question, { type: "number" | "percent" }>;
+export type Reading = { answer: Pick<Answer, "kind" | "value" | "given"> | null } | ToMend;
+/** `box` names the box beside the question's own that is to be mended. */
+export type ToMend = { code: string; detail?: Record<string, string | number>; box?: "crate" };
 type OptionQuestion = Extract<Question, { type: "choice" | "rating" | "several" }>;
 
 /** No box takes more; what is longer is refused before anything looks into it. */
@@ -82,59 +80,6 @@ function readText(
 			if (lengthOf(text) > question.maxLength) return tooLong(question);
 			return { answer: { kind: "given", value: text, given: null } };
 	}
-}
-
-function readNumber(
-	question: NumberQuestion,
-	text: string,
-	bushelLb: number | null,
-	values: StepValues,
-	language: string,
-): Reading {
-	const typed = parseTypedNumber(text, language);
-	if (!typed.ok) return { code: numberProblems[typed.code] };
-	if (question.type === "number" && question.unitFamily === "mass") {
-		if (typed.percentSign) return { code: "unit_unknown" };
-		const chosen = postedText(values, `${question.key}_unit`);
-		const unit = typed.unit ?? chosen;
-		if (unit === "") return { code: "unit_missing" };
-		if (!isMassUnit(unit) || !massUnitsFor(bushelLb).includes(unit)) return { code: "unit_unknown" };
-		const pounds = toPounds(typed.value, unit, bushelLb);
-		return (
-			outside(pounds, question.limits, (limit) => fromPounds(limit, unit, bushelLb)) ?? amount(pounds, { text, unit })
-		);
-	}
-	if (typed.unit !== null || (typed.percentSign && question.type !== "percent")) return { code: "unit_unknown" };
-	const counted = question.type === "number" && (question.unitFamily === "trees" || question.unitFamily === "count");
-	if (counted && !Number.isInteger(typed.value)) return { code: "not_whole" };
-	return outside(typed.value, limitsOf(question), (limit) => limit) ?? amount(typed.value, { text });
-}
-
-const numberProblems = {
-	negative: "negative",
-	not_a_number: "not_a_number",
-	number_unclear: "ambiguous_number",
-	unit_unclear: "unit_unknown",
-	unit_not_known: "unit_unknown",
-	too_long: "too_long",
-} as const;
-
-function amount(value: number, given: { text: string; unit?: MassUnit }): Reading {
-	return { answer: { kind: "given", value, given } };
-}
-
-function limitsOf(question: NumberQuestion): NumberQuestion["limits"] {
-	if (question.type !== "percent") return question.limits;
-	const { hardMin = 0, hardMax = 100 } = question.limits ?? {};
-	return { hardMin: Math.max(0, hardMin), hardMax: Math.min(100, hardMax) };
-}
-
-/** A hard limit that is broken, told in the unit that the grower uses; three decimals keep it on the right side. */
-function outside(value: number, limits: NumberQuestion["limits"], shown: (limit: number) => number): Reading | null {
-	const { hardMin = -Infinity, hardMax = Infinity } = limits ?? {};
-	if (value > hardMax) return { code: "too_large_limit", detail: { max: Math.floor(shown(hardMax) * 1000) / 1000 } };
-	if (value < hardMin) return { code: "too_small_limit", detail: { min: Math.ceil(shown(hardMin) * 1000) / 1000 } };
-	return null;
 }
 
 /** A day of the season's year that is not still to come. Days of ISO 8601 compare as texts. */

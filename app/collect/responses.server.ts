@@ -7,6 +7,7 @@ import { type AnswerPlace, findPlace, holdOpenSurvey } from "./answer-place.serv
 import {
 	findNewestSubmission,
 	listAnswers,
+	listCrates,
 	listPlantingsAsked,
 	replaceAnswers,
 	sameAnswers,
@@ -31,6 +32,8 @@ export type Answering = {
 	closesAt: Date;
 	isOpen: boolean;
 	massUnit: MassUnit;
+	/** Pounds that the operation's crate holds, by crop, as it last told, in this survey or an earlier one. */
+	crates: Record<string, number>;
 	/** The operation's own, for a visitor who has not chosen one. */
 	language: "en" | "es";
 	plantings: PlantingAsked[];
@@ -67,6 +70,7 @@ export async function findAnswering(trx: Trx, viewer: Grower, place: AnswerPlace
 		operationId: place.operationId,
 		definition,
 		plantings,
+		crates: await listCrates(trx, place.operationId),
 		response: row.response && { ...row.response, changedSinceSubmission: changed },
 		answers,
 	};

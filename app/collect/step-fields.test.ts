@@ -1,8 +1,8 @@
 import * as fc from "fast-check";
 import { describe, expect, test } from "vitest";
-import type { Answer, FormDefinition, Question } from "./form.ts";
+import type { FormDefinition, Question } from "./form.ts";
 import { afterHarvest } from "./forms/after-harvest.ts";
-import { readStep, type StepValues, valuesOf } from "./step-fields.ts";
+import { readStep, type StepValues } from "./step-fields.ts";
 import { listSteps, type PlantingAsked, questionsAsked, type Step } from "./steps.ts";
 
 const planting: PlantingAsked = {
@@ -257,63 +257,10 @@ describe("choices and texts", () => {
 	});
 });
 
-describe("what the boxes hold", () => {
-	const settings = { massUnit: "bu", language: "en" } as const;
-	test("nothing at first but what the directory knows and the operation's unit", () => {
-		expect(valuesOf(...stepOf("planting-p1"), [], settings)).toEqual({
-			bearing_trees: "40",
-			normal_crop: "",
-			normal_crop_unit: "bu",
-			harvested: "",
-			harvested_unit: "bu",
-		});
-		expect(valuesOf(...stepOf("planting-p1", hazelnut), [], settings)).toMatchObject({ harvested_unit: "lb" });
-	});
-	test("an answer that the directory's number does not replace", () => {
-		const silent: Answer = {
-			questionKey: "bearing_trees",
-			plantingId: "p1",
-			kind: "dont_know",
-			value: null,
-			given: null,
-		};
-		const values = valuesOf(...stepOf("planting-p1"), [silent], settings);
-		expect(values).toMatchObject({ bearing_trees_kind: "dont_know" });
-		expect(values.bearing_trees).toBeUndefined();
-	});
-	test.each<[string, StepValues]>([
-		[
-			"planting-p1",
-			{
-				bearing_trees: "1,234",
-				normal_crop: "$1,200 lb",
-				normal_crop_unit: "lb",
-				harvested_unit: "bu",
-				harvested_kind: "refused",
-			},
-		],
-		["causes", { cause_freeze: "75%", cause_other: "25" }],
-		["harvest_days", { first_harvest: "2031-09-01", last_harvest_kind: "dont_know" }],
-		["next_year", { bud_set: "_refused", comment: "one\ntwo" }],
-	])("what was typed in %s stands there again, and reads as it did", (key, typed) => {
-		const step = stepOf(key);
-		const first = readStep(...step, typed, en);
-		if (!first.ok) throw new Error("the example does not read");
-		const shown = valuesOf(...step, first.answers, settings);
-		expect(shown).toMatchObject(typed);
-		expect(readStep(...step, shown, en)).toEqual(first);
-	});
-	test("a tick for all shares stands at its one pair", () => {
-		const step = stepOf("causes");
-		const outcome = readStep(...step, { screen_kind: "refused" }, en);
-		expect(outcome.ok && valuesOf(...step, outcome.answers, settings)).toEqual({ screen_kind: "refused" });
-	});
-});
-
 test("whatever is posted, reading gives answers of the step's questions or problems of its fields", () => {
 	const texts = fc.oneof(
 		fc.string({ unit: "binary" }),
-		fc.constantFrom("5", "5 bu", "_refused", "dont_know", "2031-09-01"),
+		fc.constantFrom("5", "5 bu", "5 cajas", "_refused", "dont_know", "2031-09-01"),
 	);
 	const anything = fc.oneof(texts, fc.array(texts, { maxLength: 3 }), fc.anything());
 	fc.assert(
@@ -322,10 +269,12 @@ test("whatever is posted, reading gives answers of the step's questions or probl
 			fc.infiniteStream(anything),
 			(key, stream) => {
 				const [step, questions] = stepOf(key);
-				const names = questions.flatMap((question) => ["", "_kind", "_unit"].map((end) => question.key + end));
+				const names = questions.flatMap((question) =>
+					["", "_kind", "_unit", "_crate"].map((end) => question.key + end),
+				);
 				const posted = Object.fromEntries([...names, "screen_kind"].map((name) => [name, stream.next().value]));
 				const outcome = readStep(step, questions, posted as StepValues, en);
-				const keys = new Set(questions.map((question) => question.key));
+				const keys = new Set(questions.flatMap((one) => (outcome.ok ? [one.key] : [one.key, `${one.key}_crate`])));
 				const named = outcome.ok
 					? outcome.answers.map((one) => one.questionKey)
 					: outcome.problems.map((one) => one.field);

@@ -2,53 +2,17 @@ import type { Problem } from "#app/lib/parse-form.ts";
 import type { Answer, Question } from "./form.ts";
 import { postedText, type StepValues } from "./posted.ts";
 import { readKind, readQuestion, type Reading, type ReadSettings } from "./read-question.ts";
-import { answersByPlace, placeOf, type Step } from "./steps.ts";
-import { type MassUnit, massUnitsFor } from "./units.ts";
+import type { Step } from "./steps.ts";
 
 /*
- * Names of a step's fields: `<key>` (box, day, text, choice; several are repeated), `<key>_unit` beside a weight,
- * `<key>_kind` for the ticks "dont_know" and "refused"; where there are options, these stand among them as `_dont_know`
+ * Names of a step's fields: `<key>` (box, day, text, choice; several are repeated), `<key>_unit` where there are several,
+ * `<key>_crate` for what the grower's own crate holds, `<key>_kind` for the ticks "dont_know" and "refused"; where there are options, these stand among them as `_dont_know`
  * and `_refused`. Shares that make a hundred have one pair of ticks, `screen_kind`, for all of them.
  */
 export type { StepValues };
-const screenKind = "screen_kind";
+export const screenKind = "screen_kind";
 
 export type ReadStep = { ok: true; answers: Answer[] } | { ok: false; problems: Problem[] };
-
-/** What the boxes hold when a step is shown: answers as they were typed, else what the directory knows. */
-export function valuesOf(
-	step: Step,
-	questions: Question[],
-	answers: Answer[],
-	settings: { massUnit: MassUnit; language: "en" | "es" },
-): StepValues {
-	const byPlace = answersByPlace(answers);
-	const shares = sharesOf(step, questions);
-	const values: StepValues = {};
-	for (const question of questions) {
-		const answer = byPlace.get(placeOf(question.key, step.planting?.plantingId ?? null));
-		if (isWeight(question)) values[`${question.key}_unit`] = unitOf(answer, step, settings.massUnit);
-		if (answer === undefined || answer.kind === "given") values[question.key] = shown(question, answer, step);
-		else if (hasOptions(question)) values[question.key] = `_${answer.kind}`;
-		else values[shares.includes(question) ? screenKind : `${question.key}_kind`] = answer.kind;
-	}
-	return values;
-}
-
-function shown(question: Question, answer: Answer | undefined, step: Step): string | string[] {
-	if (answer !== undefined) {
-		if (answer.given !== null) return answer.given.text;
-		return Array.isArray(answer.value) ? answer.value : String(answer.value ?? "");
-	}
-	if (question.type === "several") return [];
-	const prefilled = question.type === "number" && question.prefill === "bearing_trees" && step.planting;
-	return prefilled ? String(prefilled.bearingTrees) : "";
-}
-
-function unitOf(answer: Answer | undefined, step: Step, massUnit: MassUnit): string {
-	const offered = massUnitsFor(step.planting?.bushelLb ?? null);
-	return answer?.given?.unit ?? (offered.includes(massUnit) ? massUnit : "lb");
-}
 
 /**
  * Reads what was posted for a step. Its answers replace all that the step held; a question left blank that may be gives
@@ -56,10 +20,11 @@ function unitOf(answer: Answer | undefined, step: Step, massUnit: MassUnit): str
  */
 export function readStep(step: Step, questions: Question[], values: StepValues, settings: ReadSettings): ReadStep {
 	const plantingId = step.planting?.plantingId ?? null;
+	const posted = withSharedCrate(questions, values);
 	const readings = new Map<string, Reading>(
 		questions.map((question) => [
 			question.key,
-			readQuestion(question, step.planting?.bushelLb ?? null, withoutOwnTicks(step, question, values), settings),
+			readQuestion(question, step.planting?.bushelLb ?? null, withoutOwnTicks(step, question, posted), settings),
 		]),
 	);
 	for (const [key, reading] of sharesRead(sharesOf(step, questions), values, readings)) readings.set(key, reading);
@@ -68,14 +33,25 @@ export function readStep(step: Step, questions: Question[], values: StepValues, 
 	const problems: Problem[] = [];
 	const answers: Answer[] = [];
 	for (const [questionKey, reading] of readings) {
-		if ("code" in reading) problems.push({ field: questionKey, ...reading });
-		else if (reading.answer) answers.push({ questionKey, plantingId, ...reading.answer });
+		if ("code" in reading) {
+			const { box, ...problem } = reading;
+			problems.push({ field: box ? `${questionKey}_${box}` : questionKey, ...problem });
+		} else if (reading.answer) answers.push({ questionKey, plantingId, ...reading.answer });
 	}
 	return problems.length > 0 ? { ok: false, problems } : { ok: true, answers };
 }
 
+/** Who fills the same crate with two answers of a screen says once what it holds. */
+function withSharedCrate(questions: Question[], values: StepValues): StepValues {
+	const names = questions.map(({ key }) => `${key}_crate`);
+	const told = names.map((name) => postedText(values, name)).find((text) => text.trim() !== "");
+	if (told === undefined) return values;
+	const missing = names.filter((name) => postedText(values, name).trim() === "");
+	return { ...values, ...Object.fromEntries(missing.map((name) => [name, told])) };
+}
+
 /** A share has no ticks of its own, and a blank one is no omission before the sum is known. */
-function sharesOf(step: Step, questions: Question[]): Question[] {
+export function sharesOf(step: Step, questions: Question[]): Question[] {
 	return questions.filter(({ key }) => step.screen.sumToHundred?.includes(key));
 }
 
@@ -136,12 +112,4 @@ function* daysInOrder(questions: Question[], readings: Map<string, Reading>): Ge
 		const [from, day] = [dayOf(question.notBefore), dayOf(question.key)];
 		if (from !== null && day !== null && day < from) yield [question.key, { code: "date_order" }];
 	}
-}
-
-function isWeight(question: Question): boolean {
-	return question.type === "number" && question.unitFamily === "mass";
-}
-
-function hasOptions(question: Question): boolean {
-	return question.type === "choice" || question.type === "rating" || question.type === "several";
 }

@@ -1,6 +1,6 @@
 import * as fc from "fast-check";
 import { describe, expect, test } from "vitest";
-import { parseTypedNumber } from "./typed-number.ts";
+import { parseTypedNumber, writeNumber } from "./typed-number.ts";
 
 const read = (typed: string, language = "en") => {
 	const result = parseTypedNumber(typed, language);
@@ -32,10 +32,24 @@ describe("what growers type, in either language", () => {
 		["3 tons", 3, "ton"],
 		["300 Kilos", 300, "kg"],
 		["500 libras", 500, "lb"],
-		["40 trees", 40, null],
-		["40 árboles", 40, null],
-		["30%", 30, null],
-		["30 %", 30, null],
+		["40 trees", 40, "plants"],
+		["40 árboles", 40, "plants"],
+		["30%", 30, "percent"],
+		["30 %", 30, "percent"],
+		["40 half-bushels", 40, "half_bu"],
+		["40 medios bushels", 40, "half_bu"],
+		["7 pecks", 7, "peck"],
+		["120 qt.", 120, "dry_qt"],
+		["35 cajas", 35, "crate"],
+		["3 short tons", 3, "ton"],
+		["2.5 acres", 2.5, "acre"],
+		["1.2 ha", 1.2, "ha"],
+		["900 row feet", 900, "ft"],
+		["300 metros", 300, "m"],
+		["27 °F", 27, "fahrenheit"],
+		["27°", 27, "degrees"],
+		["3 º C", 3, "celsius"],
+		["27 degrees F", 27, "fahrenheit"],
 	])("%j is read", (typed, value, unit) => {
 		expect(read(typed, "en")).toEqual([value, unit]);
 		expect(read(typed, "es")).toEqual([value, unit]);
@@ -57,6 +71,7 @@ describe("what could be two numbers", () => {
 		expect(read("3 toneladas", "es")).toBe("unit_unclear");
 		expect(read("3 t", "en")).toBe("unit_unclear");
 		expect(read("3 quintales", "es")).toBe("unit_unclear");
+		expect(read("3 cuartos", "es")).toBe("unit_unclear");
 	});
 });
 
@@ -77,10 +92,42 @@ describe("what is no number to store", () => {
 		["NaN", "not_a_number"],
 		["Infinity", "not_a_number"],
 		["40 bins", "unit_not_known"],
+		["40 lb kg", "unit_not_known"],
 		["<b>40</b>", "not_a_number"],
 		["4".repeat(61), "too_long"],
 		["x".repeat(2_000_000), "too_long"],
 	])("%.20s gives %s", (typed, code) => expect(read(typed)).toBe(code));
+});
+
+const below = (typed: string) => {
+	const result = parseTypedNumber(typed, "en", { belowZero: true });
+	return result.ok ? [result.value, result.unit] : result.code;
+};
+
+describe("below zero", () => {
+	test("is read where it may be", () => {
+		expect(below("-3.5 °C")).toEqual([-3.5, "celsius"]);
+		expect(below("−4")).toEqual([-4, null]);
+		expect(below("-1,234.5")).toEqual([-1234.5, null]);
+		expect(below("27-30")).toBe("not_a_number");
+	});
+	test("a zero has no sign", () => {
+		expect(Object.is((below("-0") as [number, null])[0], 0)).toBe(true);
+	});
+});
+
+test("what the boxes write is read back in both languages", () => {
+	expect(writeNumber(12.345)).toBe("12.3450");
+	const numbers = fc.oneof(
+		fc.double({ min: -1e9, max: 1e9, noNaN: true }),
+		fc.integer({ min: -1e9, max: 1e9 }).map((thousandths) => thousandths / 1000),
+	);
+	fc.assert(
+		fc.property(numbers, fc.constantFrom("en", "es"), (number, language) => {
+			const result = parseTypedNumber(writeNumber(number), language, { belowZero: true });
+			expect(result.ok && Math.abs(result.value - number)).toBeLessThanOrEqual(1e-12 + 1e-12 * Math.abs(number));
+		}),
+	);
 });
 
 test("a number written by the product's own formatter is read back as it was", () => {

@@ -1,26 +1,11 @@
 import { useTranslation } from "react-i18next";
 import { Link } from "react-router";
+import type { AnswerGroup, ShownAnswer, ShownUnit } from "#app/collect/answer-lines.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { decimalsOf } from "#app/lib/format.ts";
-import type { Words } from "#app/lib/words.ts";
+import { decimalsOf, type Unit } from "#app/lib/format.ts";
 import { DescriptionList } from "./description-list.tsx";
 import { Section } from "./section.tsx";
-
-type AnswerUnit = "lb" | "bu" | "ton" | "kg" | "trees" | "percent" | "count";
-export type ShownAnswer =
-	| { kind: "quantity"; value: number; unit: AnswerUnit }
-	| { kind: "day"; day: string }
-	| { kind: "words"; words: Words[] }
-	| { kind: "text"; text: string }
-	| { kind: "dont_know" | "refused" | "none" };
-export type AnswerGroup = {
-	stepKey: string;
-	title: Words;
-	/** Set where the group tells of one planting, which then names it. */
-	planting: { cropKey: string; cultivar: string } | null;
-	lines: { questionKey: string; text: Words; shown: ShownAnswer }[];
-};
 
 type AnswerListProps = {
 	groups: AnswerGroup[];
@@ -61,8 +46,27 @@ function plantingName({ cropKey, cultivar }: { cropKey: string; cultivar: string
 	return cultivar ? `${crop}: ${cultivar}` : crop;
 }
 
-// A bushel and a short ton have other names where figures are told.
-const formatUnit = { lb: "lb", kg: "kg", trees: "trees", percent: "percent", bu: "bushels", ton: "tons" } as const;
+/** What the shared words call each unit of an answer. */
+const formatUnit: Record<Exclude<ShownUnit, "count">, Unit> = {
+	lb: "lb",
+	kg: "kg",
+	ton: "tons",
+	bu: "bushels",
+	half_bu: "half_bushels",
+	peck: "pecks",
+	dry_qt: "dry_quarts",
+	crate: "crates",
+	acre: "acres",
+	ha: "hectares",
+	fahrenheit: "fahrenheit",
+	celsius: "celsius",
+	ft: "row_feet",
+	m: "row_meters",
+	tree: "tree",
+	bush: "bush",
+	plants: "trees",
+	percent: "percent",
+};
 
 function AnswerText({ shown }: { shown: ShownAnswer }) {
 	const { t, i18n } = useTranslation();
@@ -71,7 +75,10 @@ function AnswerText({ shown }: { shown: ShownAnswer }) {
 		case "quantity": {
 			const decimals = decimalsOf(shown.value);
 			if (shown.unit === "count") return format.number(shown.value, decimals);
-			return format.quantity(shown.value, formatUnit[shown.unit], decimals);
+			const amount = format.quantity(shown.value, formatUnit[shown.unit], decimals);
+			const { crateLb } = shown;
+			if (crateLb === undefined) return amount;
+			return t("answers.crates", { crates: amount, each: format.quantity(crateLb, "lb", decimalsOf(crateLb)) });
 		}
 		case "day":
 			return format.day(shown.day);

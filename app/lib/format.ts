@@ -1,7 +1,10 @@
 import type { TFunction } from "i18next";
 
+/** Units of published figures, and those in which growers tell their answers. */
 export type Unit =
-	"percent" | "percent_of_normal" | "lb_per_tree" | "lb" | "trees" | "operations" | "acres" | "bushels" | "kg" | "tons";
+	| ("percent" | "percent_of_normal" | "lb_per_tree" | "lb" | "trees" | "operations")
+	| ("kg" | "tons" | "bushels" | "half_bushels" | "pecks" | "dry_quarts" | "crates")
+	| ("acres" | "hectares" | "fahrenheit" | "celsius" | "row_feet" | "row_meters" | "tree" | "bush");
 
 /** The locale of numbers and dates. es-US, as Spanish speakers in the states read decimal points and not commas. */
 function localeOf(language: string): "en-US" | "es-US" {

@@ -1,6 +1,6 @@
 import type { Answer } from "#app/collect/form.ts";
 import { parseTypedNumber } from "#app/collect/typed-number.ts";
-import { fromPounds, type MassUnit, massUnitsFor, toPounds } from "#app/collect/units.ts";
+import { fromCanonical, toCanonical, unitsFor } from "#app/collect/units.ts";
 import { crops } from "#app/directory/crops.ts";
 import { type Harvest, inventHarvest, inventPicking } from "./harvest.ts";
 import type { SeedOperation } from "./operations.ts";
@@ -39,13 +39,13 @@ type Told = Harvest & { answers: Answer[] };
 function tell(random: Random, operation: SeedOperation, harvest: Harvest): Told {
 	const { planting } = harvest;
 	const bushelLb = bushelOf.get(planting.crop_key) ?? null;
-	const offered = massUnitsFor(bushelLb).includes(operation.mass_unit);
-	const unit: MassUnit = offered ? operation.mass_unit : "lb";
+	const sizes = { bushelLb, crateLb: null };
+	const unit = unitsFor("mass", bushelLb).includes(operation.mass_unit) ? operation.mass_unit : "lb";
 	const mass = (questionKey: string, pounds: number): Answer & { value: number } => {
-		const typed = typedNumber(random, fromPounds(pounds, unit, bushelLb));
+		const typed = typedNumber(random, fromCanonical(pounds, unit, sizes));
 		const read = parseTypedNumber(typed, operation.language);
 		if (!read.ok) throw new Error(`the demo types "${typed}", which is no number`);
-		const value = toPounds(read.value, unit, bushelLb);
+		const value = toCanonical(read.value, unit, sizes);
 		return { questionKey, plantingId: planting.planting_id, kind: "given", value, given: { text: typed, unit } };
 	};
 	const trees = planting.bearing_trees;

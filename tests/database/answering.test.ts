@@ -169,6 +169,16 @@ describe("keeping a step", () => {
 		]);
 	});
 
+	test("what a grower's crate holds is known at the next survey, and to nobody else", async () => {
+		const { place, grower, step } = await askGrower(owner, associate);
+		const crates = { normal_crop: "100", normal_crop_unit: "crate", normal_crop_crate: "38.5" };
+		await typeStep(grower, place, step, { ...pounds(40, 0, 10), ...crates });
+		const next = { ...place, surveyId: await addSurvey(associate) };
+		expect((await answeringOf(grower, next)).crates).toEqual({ apple: 38.5 });
+		const other = await askGrower(owner, associate);
+		expect((await answeringOf(other.grower, other.place)).crates).toEqual({});
+	});
+
 	test("a step saved again replaces what it held, and the same answers change nothing", async () => {
 		const { place, grower } = await askGrower(owner, associate);
 		const days = { first_harvest: "2031-09-01", last_harvest: "2031-10-01" };

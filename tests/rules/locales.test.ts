@@ -20,9 +20,15 @@ const sameInBoth: Record<string, string> = {
 	"common:crop.aronia": "the plant's botanical name",
 	"common:unit.lb": "a unit's sign",
 	"common:unit.kg": "a unit's sign",
+	"common:unit.fahrenheit": "a unit's sign",
+	"common:unit.celsius": "a unit's sign",
+	"common:unit.pecks_": "the trade's word, also in Spanish",
 	"common:unit.acres_": "the same word",
 	"common:unit.bushels_": "the trade's word, also in Spanish",
 	"grower:screen.unit.bu": "the trade's word, also in Spanish",
+	"grower:screen.unit.acre": "the same word",
+	"grower:screen.unit.fahrenheit": "a unit's sign",
+	"grower:screen.unit.celsius": "a unit's sign",
 	"desk:surveyNew.title": "a survey has a title in either language, whatever the associate's own",
 };
 const isSameInBoth = (key: string) => Object.keys(sameInBoth).some((start) => key.startsWith(start));

@@ -4,7 +4,8 @@ import { data, Form, href, Link, redirect, useNavigation } from "react-router";
 import type { Route } from "./+types/screen";
 import { requireGrower } from "#app/auth/guard.server.ts";
 import { saveStep } from "#app/collect/responses.server.ts";
-import { readStep, valuesOf } from "#app/collect/step-fields.ts";
+import { readStep } from "#app/collect/step-fields.ts";
+import { valuesOf } from "#app/collect/step-values.ts";
 import { listSteps, questionsAsked } from "#app/collect/steps.ts";
 import { Button } from "#app/components/button.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
@@ -23,7 +24,7 @@ import { useStepTitle } from "./parts/step-title.ts";
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const answering = await getAnswering(context, params);
 	if (!answering.response) throw redirect(href("/answer/:surveyId/:operationId", params), 303);
-	const { definition, plantings, answers, massUnit } = answering;
+	const { definition, plantings, answers, massUnit, crates } = answering;
 	const steps = listSteps(definition, plantings, answers);
 	const at = steps.findIndex((step) => step.key === params.screen);
 	const step = steps[at];
@@ -32,7 +33,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	return {
 		step,
 		questions,
-		values: valuesOf(step, questions, answers, { massUnit, language: getLanguage(context) }),
+		values: valuesOf(step, questions, answers, { massUnit, crates, language: getLanguage(context) }),
 		number: at + 1,
 		of: steps.length,
 		previous: steps[at - 1]?.key ?? null,
@@ -92,7 +93,12 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 			</div>
 			<ErrorSummary
 				problems={actionData?.problems}
-				labels={Object.fromEntries(questions.map((question) => [question.key, labelOf(question, i18n.language)]))}
+				labels={Object.fromEntries(
+					questions.flatMap((question) => [
+						[question.key, labelOf(question, i18n.language)],
+						[`${question.key}_crate`, t("screen.crateWeight")],
+					]),
+				)}
 			/>
 			{/* A screen of its own: boxes of one step must not carry their text into the next. */}
 			<Form key={step.key} method="post" noValidate>
@@ -103,7 +109,7 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 						planting={step.planting}
 						values={values}
 						mayNotKnow={!shared.has(question.key)}
-						problem={actionData?.problems.find(({ field }) => field === question.key)}
+						problems={actionData?.problems ?? []}
 					/>
 				))}
 				{shared.size > 0 && <ScreenUnknown values={values} />}

@@ -2,18 +2,19 @@ import { useTranslation } from "react-i18next";
 import type { Question } from "#app/collect/form.ts";
 import type { StepValues } from "#app/collect/step-fields.ts";
 import type { PlantingAsked } from "#app/collect/steps.ts";
-import { massUnitsFor } from "#app/collect/units.ts";
+import { canonicalUnit, unitFamilyOf, unitsFor } from "#app/collect/units.ts";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
+import { CrateBox } from "./crate-box.tsx";
 import { UnknownBoxes } from "./unknown-boxes.tsx";
 
 type QuestionFieldProps = {
 	question: Question;
 	planting: PlantingAsked | null;
 	values: StepValues;
-	problem: Problem | undefined;
+	problems: Problem[];
 	/** false where the screen asks once whether the grower knows, for all its questions. */
 	mayNotKnow: boolean;
 };
@@ -40,7 +41,7 @@ export function QuestionField(props: QuestionFieldProps) {
 
 type Options = Extract<Question, { options: unknown }>;
 
-function OptionsField({ question, values, problem }: QuestionFieldProps & { question: Options }) {
+function OptionsField({ question, values, problems }: QuestionFieldProps & { question: Options }) {
 	const { t, i18n } = useTranslation("grower");
 	return (
 		<ChoiceField
@@ -56,21 +57,19 @@ function OptionsField({ question, values, problem }: QuestionFieldProps & { ques
 				{ value: "_refused", label: t("unknown.refused") },
 			]}
 			defaultValue={values[question.key]}
-			problem={problem}
+			problem={problems.find(({ field }) => field === question.key)}
 		/>
 	);
 }
 
 type Box = Exclude<Question, Options | { type: "photo" }>;
 
-function BoxField({ question, planting, values, problem, mayNotKnow }: QuestionFieldProps & { question: Box }) {
+function BoxField({ question, planting, values, problems, mayNotKnow }: QuestionFieldProps & { question: Box }) {
 	const { t, i18n } = useTranslation("grower");
 	const label = wordsIn(question.text, i18n.language);
 	const typed = values[question.key];
 	const isText = question.type === "short_text" || question.type === "long_text";
-	const unknown = (
-		<UnknownBoxes name={`${question.key}_kind`} about={t("unknown.about", { question: label })} values={values} />
-	);
+	const crate = `${question.key}_crate`;
 	return (
 		<TextField
 			name={question.key}
@@ -79,15 +78,33 @@ function BoxField({ question, planting, values, problem, mayNotKnow }: QuestionF
 			noun={labelOf(question, i18n.language)}
 			optional={!question.required}
 			defaultValue={typeof typed === "string" ? typed : ""}
-			problem={problem}
+			problem={problems.find(({ field }) => field === question.key)}
 			type={question.type === "date" ? "date" : "text"}
 			inputMode={inputModes[question.type]}
 			multiline={question.type === "long_text"}
 			size={question.type === "number" || question.type === "percent" ? "short" : undefined}
 			autoComplete="off"
 			suffix={<UnitOf question={question} planting={planting} values={values} label={label} />}
-			// A note that nobody has to write needs no box for not writing it.
-			below={mayNotKnow && !isText && unknown}
+			below={
+				<>
+					{unitFamilyOf(question) === "mass" && (
+						<CrateBox
+							name={crate}
+							question={label}
+							value={values[crate]}
+							problem={problems.find(({ field }) => field === crate)}
+						/>
+					)}
+					{/* A note that nobody has to write needs no box for not writing it. */}
+					{mayNotKnow && !isText && (
+						<UnknownBoxes
+							name={`${question.key}_kind`}
+							about={t("unknown.about", { question: label })}
+							values={values}
+						/>
+					)}
+				</>
+			}
 		/>
 	);
 }
@@ -108,17 +125,18 @@ function UnitOf({ question, planting, values, label }: UnitProps) {
 	if (question.type === "percent") return "%";
 	if (question.type !== "number") return null;
 	if (question.unitFamily === "trees") return t(`screen.plants.${planting?.plantKind ?? "any"}`);
-	if (question.unitFamily !== "mass") return null;
+	const family = unitFamilyOf(question);
+	if (family === undefined) return null;
 	const name = `${question.key}_unit`;
 	const chosen = values[name];
 	return (
 		<select
 			name={name}
 			aria-label={t("screen.unitOf", { question: label })}
-			defaultValue={typeof chosen === "string" ? chosen : "lb"}
+			defaultValue={typeof chosen === "string" ? chosen : canonicalUnit(family)}
 			className="min-h-11 rounded-plat border border-field bg-paper px-3 py-2 text-ink"
 		>
-			{massUnitsFor(planting?.bushelLb ?? null).map((unit) => (
+			{unitsFor(family, planting?.bushelLb ?? null).map((unit) => (
 				<option key={unit} value={unit}>
 					{t(`screen.unit.${unit}`)}
 				</option>
