@@ -42,7 +42,12 @@ export default [
 			route("review", "routes/grower/review.tsx"),
 			route("receipt", "routes/grower/receipt.tsx"),
 		]),
-		...prefix("orchard", [layout("routes/grower/orchard-layout.tsx", [index("routes/grower/orchard.tsx")])]),
+		...prefix("orchard", [
+			layout("routes/grower/orchard-layout.tsx", [
+				index("routes/grower/orchard.tsx"),
+				route(":operationId/answers/:surveyId", "routes/grower/own-answers.tsx"),
+			]),
+		]),
 	]),
 
 	...prefix("desk", [

@@ -195,6 +195,7 @@ export interface CollectResponse {
   submitted_at: Timestamp | null;
   submitted_version: Generated<number>;
   survey_id: string;
+  withdrawn_at: Timestamp | null;
 }
 
 export interface CollectSubmission {
@@ -202,6 +203,7 @@ export interface CollectSubmission {
   response_id: string;
   submitted_at: Generated<Timestamp>;
   version: number;
+  withdrawn_at: Timestamp | null;
 }
 
 export interface CollectSurvey {

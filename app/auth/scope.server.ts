@@ -47,3 +47,20 @@ export async function setScope(trx: Trx, scope: Scope): Promise<void> {
 		trx,
 	);
 }
+
+/**
+ * Does one piece of a transaction under another scope and then goes on under its own: for what must be known or written
+ * there and is not the asker's to see. A failure ends the transaction, and with it either scope.
+ */
+export async function underScope<T>(trx: Trx, scope: Scope, work: () => Promise<T>): Promise<T> {
+	const { rows } = await sql<{ kind: string; states: string; operations: string }>`select
+		current_setting('tallygrove.scope', true) as kind, current_setting('tallygrove.states', true) as states,
+		current_setting('tallygrove.operations', true) as operations`.execute(trx);
+	const own = rows[0];
+	await setScope(trx, scope);
+	const result = await work();
+	await sql`select set_config('tallygrove.scope', ${own?.kind ?? ""}, true),
+		set_config('tallygrove.states', ${own?.states ?? ""}, true),
+		set_config('tallygrove.operations', ${own?.operations ?? ""}, true)`.execute(trx);
+	return result;
+}

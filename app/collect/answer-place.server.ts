@@ -61,6 +61,7 @@ function findResponse(trx: Trx, { surveyId, operationId }: AnswerPlace) {
 			"submitted_version as submittedVersion",
 			"receipt_code as receiptCode",
 			"submitted_at as submittedAt",
+			"withdrawn_at as withdrawnAt",
 		])
 		.executeTakeFirst();
 }

@@ -4,7 +4,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Answer } from "./form.ts";
 import { answersByPlace, placeOf, type PlantingAsked } from "./steps.ts";
 
-/** What was sent in once: the answers that were kept, and which plantings they are about. Never changed afterwards. */
+/** What was sent in once: the answers that were kept, and which plantings they are about. Never changed afterwards, but it can be withdrawn. */
 export type Submission = { plantings: { plantingId: string; cropKey: string }[]; answers: Answer[] };
 
 export async function listAnswers(trx: Trx, responseId: string): Promise<Answer[]> {
@@ -68,11 +68,13 @@ export function sameAnswers(one: Answer[], other: Answer[]): boolean {
 	return isDeepStrictEqual(answersByPlace(one), answersByPlace(other));
 }
 
+/** The newest of what was sent in and not withdrawn since. */
 export async function findNewestSubmission(trx: Trx, responseId: string): Promise<Submission | undefined> {
 	const row = await trx
 		.selectFrom("collect.submission")
 		.select("answers")
 		.where("response_id", "=", responseId)
+		.where("withdrawn_at", "is", null)
 		.orderBy("version", "desc")
 		.limit(1)
 		.executeTakeFirst();

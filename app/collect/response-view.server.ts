@@ -1,14 +1,12 @@
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { listAnswerLines } from "./answer-lines.ts";
-import type { Submission } from "./answer-rows.server.ts";
 import { findSurveyForm } from "./forms.server.ts";
-import type { PlantingAsked } from "./steps.ts";
+import { viewSubmissions } from "./submission-view.server.ts";
 import { isId } from "./surveys.server.ts";
 
 /**
  * One operation's answers as they were sent in, question by question; before that only that they were begun, since a
- * draft's answers are the grower's own.
+ * draft's answers are the grower's own, and so are those that the grower withdrew.
  * @param version which time they were sent in; without it, or where there is no such, the newest.
  * @returns undefined outside the viewer's states, and for a response to another survey.
  */
@@ -25,21 +23,11 @@ export async function findResponse(
 		.executeTakeFirst();
 	const definition = response && (await findSurveyForm(trx, surveyId));
 	if (!definition) return undefined;
-	const submissions = await trx
-		.selectFrom("collect.submission")
-		.select(["version", "submitted_at as submittedAt"])
-		.where("response_id", "=", responseId)
-		.orderBy("version", "desc")
-		.execute();
-	const shown = submissions.find((submission) => submission.version === version) ?? submissions[0];
-	const submission = shown && (await getSubmission(trx, responseId, shown.version));
 	return {
 		...response,
 		mode: response.mode as "web" | "telephone" | "paper",
 		language: response.language as "en" | "es",
-		submissions,
-		shownVersion: shown?.version ?? null,
-		groups: submission ? listAnswerLines(definition, await listPlantings(trx, submission), submission.answers) : [],
+		...(await viewSubmissions(trx, definition, responseId, { version, withdrawn: false })),
 	};
 }
 
@@ -68,38 +56,6 @@ function selectResponse(trx: Trx, viewer: Associate) {
 			"r.pledged_at as pledgedAt",
 			"r.receipt_code as receiptCode",
 			"r.started_at as startedAt",
+			"r.withdrawn_at as withdrawnAt",
 		]);
-}
-
-async function getSubmission(trx: Trx, responseId: string, version: number): Promise<Submission> {
-	const { answers } = await trx
-		.selectFrom("collect.submission")
-		.select("answers")
-		.where("response_id", "=", responseId)
-		.where("version", "=", version)
-		.executeTakeFirstOrThrow();
-	return answers as Submission;
-}
-
-/** The plantings that were asked about then, with the crops they had, also those taken out since; none planted later. */
-async function listPlantings(trx: Trx, { plantings }: Submission): Promise<PlantingAsked[]> {
-	const ids = plantings.map(({ plantingId }) => plantingId);
-	const rows = await trx
-		.selectFrom("directory.planting")
-		.select(["planting_id", "cultivar", "bearing_trees"])
-		.where((eb) => eb("planting_id", "=", eb.fn.any(eb.val(ids))))
-		.execute();
-	const crops = await trx.selectFrom("directory.crop").select(["crop_key", "plant_kind", "bushel_lb"]).execute();
-	return plantings.map(({ plantingId, cropKey }) => {
-		const row = rows.find((planting) => planting.planting_id === plantingId);
-		const crop = crops.find(({ crop_key }) => crop_key === cropKey);
-		return {
-			plantingId,
-			cropKey,
-			cultivar: row?.cultivar ?? "",
-			bearingTrees: row?.bearing_trees ?? 0,
-			plantKind: crop?.plant_kind === "bush" ? "bush" : "tree",
-			bushelLb: crop?.bushel_lb ?? null,
-		};
-	});
 }

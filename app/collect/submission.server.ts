@@ -93,6 +93,7 @@ async function keepSubmission(
 			receipt_code: receiptCode,
 			first_submitted_at: sql`coalesce(first_submitted_at, now())`,
 			submitted_at: sql`now()`,
+			withdrawn_at: null,
 			language,
 		})
 		.where("response_id", "=", responseId)

@@ -38,6 +38,7 @@ export async function findMailing(trx: Trx, mailingId: string) {
 			"r.language as response_language",
 			"r.receipt_code",
 			"r.submitted_at",
+			"r.withdrawn_at",
 			// A new link was asked for after this one was queued: sending it would bring the older mail to life again.
 			eb
 				.exists(
@@ -61,7 +62,7 @@ export type Mailing = NonNullable<Awaited<ReturnType<typeof findMailing>>>;
 export function reasonNotToSend(mailing: Mailing): MailingFailure | null {
 	if (!mailing.email) return "no_address";
 	if (mailing.kind === "receipt") return null;
-	if (mailing.submitted_at) return "answered";
+	if (mailing.submitted_at || mailing.withdrawn_at) return "answered";
 	if (!mailing.is_open) return "survey_closed";
 	if (mailing.replaced) return "replaced";
 	return null;

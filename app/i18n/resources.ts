@@ -4,6 +4,7 @@ import enDesk from "#locales/en/desk.json" with { type: "json" };
 import enGrower from "#locales/en/grower.json" with { type: "json" };
 import enMail from "#locales/en/mail.json" with { type: "json" };
 import enNetwork from "#locales/en/network.json" with { type: "json" };
+import enOrchard from "#locales/en/orchard.json" with { type: "json" };
 import enPublic from "#locales/en/public.json" with { type: "json" };
 import enRelease from "#locales/en/release.json" with { type: "json" };
 import esCommon from "#locales/es/common.json" with { type: "json" };
@@ -12,6 +13,7 @@ import esDesk from "#locales/es/desk.json" with { type: "json" };
 import esGrower from "#locales/es/grower.json" with { type: "json" };
 import esMail from "#locales/es/mail.json" with { type: "json" };
 import esNetwork from "#locales/es/network.json" with { type: "json" };
+import esOrchard from "#locales/es/orchard.json" with { type: "json" };
 import esPublic from "#locales/es/public.json" with { type: "json" };
 import esRelease from "#locales/es/release.json" with { type: "json" };
 
@@ -24,6 +26,7 @@ export const resources = {
 		grower: enGrower,
 		mail: enMail,
 		network: enNetwork,
+		orchard: enOrchard,
 		public: enPublic,
 		release: enRelease,
 	},
@@ -34,6 +37,7 @@ export const resources = {
 		grower: esGrower,
 		mail: esMail,
 		network: esNetwork,
+		orchard: esOrchard,
 		public: esPublic,
 		release: esRelease,
 	},

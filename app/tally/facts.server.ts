@@ -7,7 +7,7 @@ import { factsOf } from "./facts.ts";
 /**
  * Rewrites the facts of one response from its newest submission, under the owner, county, state and stratum of the frozen
  * frame. What review set aside stays so while its figures are the same; new figures are judged anew. A response that was
- * never sent in has no facts. The caller holds the response locked.
+ * never sent in has no facts, nor one that was withdrawn. The caller holds the response locked.
  */
 export async function writeFacts(trx: Transaction<DB>, responseId: string): Promise<void> {
 	const sent = await trx
@@ -19,6 +19,7 @@ export async function writeFacts(trx: Transaction<DB>, responseId: string): Prom
 			join.onRef("f.survey_id", "=", "r.survey_id").onRef("f.operation_id", "=", "r.operation_id"),
 		)
 		.where("r.response_id", "=", responseId)
+		.where("b.withdrawn_at", "is", null)
 		.orderBy("b.version", "desc")
 		.limit(1)
 		.select(["b.answers", "v.definition"])

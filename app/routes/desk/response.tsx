@@ -66,15 +66,28 @@ export default function ResponsePage({ loaderData: response, params }: Route.Com
 				/>
 				{response.shownVersion === null ? (
 					<div className="mt-8">
-						<EmptyState title={t("response.draftTitle")}>
-							{t("response.draftBody", { moment: format.moment(response.startedAt, timeZone) })}
-						</EmptyState>
+						<NothingSent response={response} />
 					</div>
 				) : (
 					<AnswerList groups={response.groups} level={3} />
 				)}
 			</Section>
 		</>
+	);
+}
+
+function NothingSent({
+	response: { startedAt, withdrawnAt, timeZone },
+}: {
+	response: Route.ComponentProps["loaderData"];
+}) {
+	const { t } = useTranslation("desk");
+	const format = useFormat();
+	const kind = withdrawnAt ? "withdrawn" : "draft";
+	return (
+		<EmptyState title={t(`response.${kind}Title`)}>
+			{t(`response.${kind}Body`, { moment: format.moment(withdrawnAt ?? startedAt, timeZone) })}
+		</EmptyState>
 	);
 }
 

@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import { href } from "react-router";
+import { href, Link } from "react-router";
 import type { Route } from "./+types/orchard";
 import { requireOrchard } from "#app/auth/guard.server.ts";
 import { listOrchard } from "#app/collect/orchard.server.ts";
@@ -19,9 +19,9 @@ export async function loader({ context }: Route.LoaderArgs) {
 type Operation = Route.ComponentProps["loaderData"]["operations"][number];
 
 export default function Orchard({ loaderData }: Route.ComponentProps) {
-	const { t } = useTranslation("grower");
+	const { t } = useTranslation("orchard");
 	return (
-		<Page title={t("orchard.title")} lead={t("orchard.lead")}>
+		<Page title={t("home.title")} lead={t("home.lead")}>
 			{loaderData.operations.map((operation) => (
 				<Section key={operation.operationId} title={operation.name}>
 					<Surveys operation={operation} />
@@ -33,16 +33,16 @@ export default function Orchard({ loaderData }: Route.ComponentProps) {
 }
 
 function Surveys({ operation }: { operation: Operation }) {
-	const { t, i18n } = useTranslation("grower");
+	const { t, i18n } = useTranslation("orchard");
 	if (operation.surveys.length === 0) {
-		return <EmptyState title={t("orchard.noSurveyTitle")}>{t("orchard.noSurveyBody")}</EmptyState>;
+		return <EmptyState title={t("home.noSurveyTitle")}>{t("home.noSurveyBody")}</EmptyState>;
 	}
 	return (
 		<ul className="border-t border-rule">
 			{operation.surveys.map((survey) => (
 				<li key={survey.surveyId} className="border-b border-rule py-4">
 					<h3 className="text-lg">
-						{t("orchard.survey", { title: wordsIn(survey.title, i18n.language), season: survey.season })}
+						{t("home.survey", { title: wordsIn(survey.title, i18n.language), season: survey.season })}
 					</h3>
 					<SurveyState survey={survey} />
 				</li>
@@ -52,47 +52,64 @@ function Surveys({ operation }: { operation: Operation }) {
 }
 
 function SurveyState({ survey }: { survey: Operation["surveys"][number] }) {
-	const { t } = useTranslation("grower");
+	const { t, i18n } = useTranslation("orchard");
 	const format = useFormat();
-	const { surveyId, operationId, isOpen, begun, receiptCode, submittedAt } = survey;
-	const answered = submittedAt && receiptCode;
+	const { surveyId, operationId, isOpen, begun, everSent, submittedAt, withdrawnAt } = survey;
+	const name = t("home.survey", { title: wordsIn(survey.title, i18n.language), season: survey.season });
 	return (
 		<>
 			<p>
-				{answered
-					? t("orchard.answered", { day: format.dayOf(submittedAt, survey.timeZone), code: receiptCode })
-					: t(isOpen ? "orchard.notAnswered" : "orchard.missed")}{" "}
-				{isOpen && t("orchard.until", { closes: format.moment(survey.closesAt, survey.timeZone) })}
+				<HowItStands survey={survey} />{" "}
+				{isOpen && t("home.until", { closes: format.moment(survey.closesAt, survey.timeZone) })}
 			</p>
-			{isOpen && (
-				<div className="mt-3">
+			<div className="mt-3 flex flex-wrap items-center gap-x-6 gap-y-3">
+				{isOpen && (
 					<ButtonLink
-						kind={answered ? "secondary" : "primary"}
+						kind={submittedAt ? "secondary" : "primary"}
 						to={href("/answer/:surveyId/:operationId", { surveyId, operationId })}
 					>
-						{t(answered ? "orchard.change" : begun ? "start.goOn" : "orchard.answer")}
+						{t(submittedAt ? "home.change" : withdrawnAt ? "home.again" : begun ? "grower:start.goOn" : "home.answer")}
 					</ButtonLink>
-				</div>
-			)}
+				)}
+				{everSent && (
+					<Link
+						to={href("/orchard/:operationId/answers/:surveyId", { surveyId, operationId })}
+						aria-label={t("home.seeOf", { survey: name })}
+						className="inline-flex min-h-11 items-center"
+					>
+						{t("home.see")}
+					</Link>
+				)}
+			</div>
 		</>
 	);
 }
 
+function HowItStands({ survey }: { survey: Operation["surveys"][number] }) {
+	const { t } = useTranslation("orchard");
+	const format = useFormat();
+	const { isOpen, receiptCode, submittedAt, withdrawnAt, timeZone } = survey;
+	if (submittedAt && receiptCode)
+		return t("home.answered", { day: format.dayOf(submittedAt, timeZone), code: receiptCode });
+	if (withdrawnAt) return t("home.withdrawn", { day: format.dayOf(withdrawnAt, timeZone) });
+	return t(isOpen ? "home.notAnswered" : "home.missed");
+}
+
 /** What the network has written down about the operation, for the grower to see and have mended. */
 function Directory({ operation }: { operation: Operation }) {
-	const { t } = useTranslation("grower");
+	const { t } = useTranslation("orchard");
 	const format = useFormat();
 	const { contactName, email, phone, countyName, stateFips, plantings } = operation;
 	return (
-		<Section title={t("orchard.known")} level={3}>
+		<Section title={t("home.known")} level={3}>
 			<DescriptionList
 				items={[
-					{ term: t("orchard.contact"), detail: contactName || t("orchard.nothing") },
-					{ term: t("orchard.email"), detail: email ?? t("orchard.nothing") },
-					{ term: t("orchard.phone"), detail: phone ?? t("orchard.nothing") },
+					{ term: t("home.contact"), detail: contactName || t("home.nothing") },
+					{ term: t("home.email"), detail: email ?? t("home.nothing") },
+					{ term: t("home.phone"), detail: phone ?? t("home.nothing") },
 					{
-						term: t("link.county"),
-						detail: t("orchard.place", { county: countyName, state: t(`common:state.${stateFips}`) }),
+						term: t("grower:link.county"),
+						detail: t("home.place", { county: countyName, state: t(`common:state.${stateFips}`) }),
 					},
 					...plantings.map((planting) => ({
 						term: [t(`common:crop.${planting.cropKey}`), planting.cultivar].filter(Boolean).join(", "),
@@ -100,7 +117,7 @@ function Directory({ operation }: { operation: Operation }) {
 					})),
 				]}
 			/>
-			<p className="mt-3 text-base text-quiet">{t("orchard.mend")}</p>
+			<p className="mt-3 text-base text-quiet">{t("home.mend")}</p>
 		</Section>
 	);
 }

@@ -104,6 +104,11 @@ export const exceptions: { from: string; to: string; because: string }[] = [
 		because: "a survey's frame can cover states that its opener has no grant for",
 	},
 	{
+		from: "app/collect/withdrawal.server.ts",
+		to: "app/auth/scope.server.ts",
+		because: "whether a release rests on an answer is asked for a grower, who sees no draft of one",
+	},
+	{
 		from: "app/collect/invitations.server.ts",
 		to: "app/jobs/queue.server.ts",
 		because: "mail is queued in the transaction that decides it",
