@@ -8,8 +8,15 @@ pg.types.setTypeParser(pg.types.builtins.INT8, Number);
 pg.types.setTypeParser(pg.types.builtins.NUMERIC, Number);
 pg.types.setTypeParser(pg.types.builtins.DATE, (text: string) => text);
 
+type ConnectOptions = {
+	max?: number;
+	name?: string;
+	/** What to throw instead when no connection can be had. */
+	away?: (error: unknown) => unknown;
+};
+
 /** A pool of connections for one role, as a typed Kysely client. The caller ends it with `destroy()`. */
-export function connect(connectionString: string, options: { max?: number; name?: string } = {}): Kysely<DB> {
+export function connect(connectionString: string, options: ConnectOptions = {}): Kysely<DB> {
 	const pool = new pg.Pool({
 		connectionString,
 		max: options.max ?? 10,
@@ -18,5 +25,9 @@ export function connect(connectionString: string, options: { max?: number; name?
 	});
 	// A server that went away is reported by the query that meets it; an idle connection's error must not end the process.
 	pool.on("error", () => {});
-	return new Kysely<DB>({ dialect: new PostgresDialect({ pool }) });
+	const taken = () =>
+		pool.connect().catch((error: unknown) => {
+			throw options.away?.(error) ?? error;
+		});
+	return new Kysely<DB>({ dialect: new PostgresDialect({ pool: { connect: taken, end: () => pool.end() } }) });
 }

@@ -2,6 +2,7 @@ import { sql, type Kysely, type Transaction } from "kysely";
 import { connect } from "#db/connect.ts";
 import type { DB } from "#db/schema.ts";
 import { env } from "#app/lib/env.server.ts";
+import { serviceAway } from "#app/lib/service-away.server.ts";
 
 /**
  * Who a transaction works for. Row-level security on `directory` and `collect` reads it, as a second wall under the checks
@@ -19,7 +20,7 @@ export type Trx = Transaction<DB>;
 let app: Kysely<DB> | undefined;
 
 function appDatabase(): Kysely<DB> {
-	app ??= connect(env().DATABASE_URL, { name: "tallygrove-app" });
+	app ??= connect(env().DATABASE_URL, { name: "tallygrove-app", away: serviceAway });
 	return app;
 }
 

@@ -82,10 +82,18 @@ function Account() {
 			</Link>
 		);
 	}
+	return <SignedIn />;
+}
+
+/** Who is signed in, and the way out; nothing for anybody else. */
+export function SignedIn() {
+	const { t } = useTranslation();
+	const visitor = useShellData()?.visitor;
+	if (!visitor) return null;
 	return (
 		<>
 			<Link to="/me" className="inline-flex min-h-11 max-w-48 items-center px-2 text-ink">
-				<span className="truncate">{shell.visitor.displayName}</span>
+				<span className="truncate">{visitor.displayName}</span>
 			</Link>
 			<form method="post" action="/sign-out">
 				<button className="min-h-11 px-2 text-damson underline underline-offset-4 hover:decoration-2">

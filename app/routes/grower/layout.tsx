@@ -5,7 +5,7 @@ import { LanguageSwitch } from "#app/components/language-switch.tsx";
 import { RefusalPage } from "#app/components/refusal-page.tsx";
 import { Sheet } from "#app/components/shell.tsx";
 import { HelpLine } from "#app/components/site-footer.tsx";
-import { Brand } from "#app/components/site-header.tsx";
+import { Brand, SignedIn } from "#app/components/site-header.tsx";
 
 export default function GrowerLayout() {
 	return (
@@ -28,7 +28,10 @@ function GrowerFrame({ children }: { children: ReactNode }) {
 	const header = (
 		<header className="double-rule no-print flex flex-wrap items-center justify-between gap-x-4 px-gutter py-1">
 			<Brand />
-			<LanguageSwitch />
+			<div className="flex flex-wrap items-center">
+				<LanguageSwitch />
+				<SignedIn />
+			</div>
 		</header>
 	);
 	const footer = (
