@@ -43,7 +43,9 @@ export function LabelText({ label, optional }: { label: ReactNode; optional?: bo
 
 /** What surrounds every field: a bar at its side when something is to be mended. */
 export function FieldFrame({ problem, children }: { problem?: Problem; children: ReactNode }) {
-	return <div className={classes("group/field mb-6 min-w-0", problem && "border-l-4 border-stop pl-4")}>{children}</div>;
+	return (
+		<div className={classes("group/field mb-6 min-w-0", problem && "border-l-4 border-stop pl-4")}>{children}</div>
+	);
 }
 
 export const inputClasses = (problem?: Problem) =>

@@ -1,6 +1,6 @@
 import { type ChildProcess, spawn } from "node:child_process";
-import { createServer } from "node:net";
 import { setTimeout as pause } from "node:timers/promises";
+import { freePort } from "#db/setup/ports.mjs";
 import { createTestDatabase } from "#tests/helpers/database.ts";
 
 export type Stack = AsyncDisposable & {
@@ -97,18 +97,6 @@ export async function startStack(
 			await database[Symbol.asyncDispose]();
 		},
 	};
-}
-
-function freePort(): Promise<number> {
-	return new Promise((resolve, reject) => {
-		const server = createServer().on("error", reject);
-		server.listen(0, "127.0.0.1", () => {
-			const address = server.address();
-			server.close(() =>
-				address && typeof address === "object" ? resolve(address.port) : reject(new Error("no port")),
-			);
-		});
-	});
 }
 
 async function answers(url: string, output: () => string, child: ChildProcess): Promise<void> {
