@@ -11,9 +11,10 @@ export function SearchBar({ label, name = "q", defaultValue, children }: SearchB
 	const { t } = useTranslation();
 	return (
 		<search>
-			<Form method="get" className="mb-5 flex flex-wrap items-end gap-3">
+			{/* Fields beside the search have a margin of their own below, which would lift them out of the row. */}
+			<Form method="get" className="mb-5 flex flex-wrap items-end gap-3 *:mb-0">
 				<div className="min-w-48 flex-1 sm:max-w-sm">
-					<label htmlFor={fieldId(name)} className="block text-sm font-bold">
+					<label htmlFor={fieldId(name)} className="block font-bold">
 						{label}
 					</label>
 					<input
@@ -22,7 +23,7 @@ export function SearchBar({ label, name = "q", defaultValue, children }: SearchB
 						name={name}
 						defaultValue={defaultValue ?? ""}
 						maxLength={200}
-						className={`${inputClasses()} mt-1 w-full`}
+						className={`${inputClasses()} mt-1.5 w-full`}
 					/>
 				</div>
 				{children}

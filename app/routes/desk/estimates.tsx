@@ -72,7 +72,7 @@ export default function Estimates({ loaderData }: Route.ComponentProps) {
 			<Notice tone="attention" title={t("estimates.mark")}>
 				{t("estimates.markBody")}
 			</Notice>
-			<Form method="get" className="mb-5 flex flex-wrap items-end gap-4">
+			<Form method="get" className="mb-5 flex flex-wrap items-end gap-4 *:mb-0">
 				<ChoiceField
 					kind="select"
 					name="crop"

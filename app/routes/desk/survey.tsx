@@ -99,7 +99,9 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 			<ErrorSummary problems={actionData?.problems} labels={closingLabels(t)} />
 			{actionData?.refused && <Notice tone="attention">{t(`survey.refused.${actionData.refused}`)}</Notice>}
 			{survey.state !== "draft" && (
-				<TallyCount count={survey.answered} of={survey.inFrame} label={t("survey.answersIn")} />
+				<div className="mb-5">
+					<TallyCount count={survey.answered} of={survey.inFrame} label={t("survey.answersIn")} />
+				</div>
 			)}
 			<DescriptionList
 				items={[
@@ -116,14 +118,17 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 					{ term: t("survey.invited"), detail: format.number(mailings.invited) },
 					{
 						term: t("survey.withoutAddress"),
-						detail: (
-							<Link
-								to={`${href("/desk/surveys/:surveyId/responses", { surveyId: survey.surveyId })}?show=no_address`}
-								className="print-plain"
-							>
-								{format.number(mailings.withoutAddress)}
-							</Link>
-						),
+						detail:
+							mailings.withoutAddress === 0 ? (
+								format.number(0)
+							) : (
+								<Link
+									to={`${href("/desk/surveys/:surveyId/responses", { surveyId: survey.surveyId })}?show=no_address`}
+									className="print-plain"
+								>
+									{format.number(mailings.withoutAddress)}
+								</Link>
+							),
 					},
 				]}
 			/>

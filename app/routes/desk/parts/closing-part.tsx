@@ -34,7 +34,7 @@ export function ClosingPart({ closing, timeZone, values, problems }: ClosingPart
 			<Form key={`${closing.on} ${closing.at}`} method="post" noValidate>
 				<p className="mb-4 max-w-prose">{t("survey.extend.body")}</p>
 				<input type="hidden" name="timeZone" value={timeZone} />
-				<div className="flex flex-wrap gap-x-8">
+				<div className="flex flex-wrap items-end gap-x-8">
 					<TextField {...field("closesOn", closing.on)} type="date" size="medium" />
 					<TextField {...field("closesAt", closing.at)} type="time" size="short" help={t("surveyNew.zone")} />
 				</div>

@@ -24,7 +24,7 @@ export function CountyCounts({ surveys, counts, query }: CountyCountsProps) {
 	return (
 		<Section title={t("overview.byCounty")} id="counties">
 			{surveys.length > 1 && (
-				<Form method="get" className="flex flex-wrap items-end gap-4">
+				<Form method="get" className="mb-5 flex flex-wrap items-end gap-4 *:mb-0">
 					<ChoiceField
 						kind="select"
 						name="survey"
@@ -35,9 +35,7 @@ export function CountyCounts({ surveys, counts, query }: CountyCountsProps) {
 							label: t("surveys.name", { title: wordsIn(title, i18n.language), season }),
 						}))}
 					/>
-					<div className="mb-6">
-						<Button kind="secondary">{t("overview.show")}</Button>
-					</div>
+					<Button kind="secondary">{t("overview.show")}</Button>
 				</Form>
 			)}
 			<DataTable

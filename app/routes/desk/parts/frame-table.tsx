@@ -56,7 +56,7 @@ export function FrameTable({ rows, sort, caption, surveyId, timeZone, empty }: F
 				},
 				{
 					key: "answered",
-					header: t("surveys.answered"),
+					header: t("responses.answered"),
 					sortable: true,
 					cell: (row) => <AnsweredLink {...row} surveyId={surveyId} of={row.name} timeZone={timeZone} />,
 				},
@@ -84,7 +84,7 @@ function LastMail({ row: { mails, email }, timeZone }: { row: FrameRow; timeZone
 	const format = useFormat();
 	const last = mails.at(-1);
 	return (
-		<>
+		<div className="min-w-48">
 			{!email && <span className="block text-attention">{t("mail_failure.no_address")}</span>}
 			{last ? (
 				<MailState mail={last} timeZone={timeZone} />
@@ -96,6 +96,6 @@ function LastMail({ row: { mails, email }, timeZone }: { row: FrameRow; timeZone
 					{t("responses.mailCount", { count: mails.length, value: format.number(mails.length) })}
 				</span>
 			)}
-		</>
+		</div>
 	);
 }

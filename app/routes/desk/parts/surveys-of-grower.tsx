@@ -45,7 +45,7 @@ export function SurveysOfGrower({ surveys, operation }: SurveysOfGrowerProps) {
 				},
 				{
 					key: "answered",
-					header: t("surveys.answered"),
+					header: t("responses.answered"),
 					cell: (survey) => <AnsweredLink {...survey} of={nameOf(survey)} timeZone={operation.timeZone} />,
 				},
 				{
@@ -68,7 +68,7 @@ function Mails({ survey, timeZone }: { survey: OperationSurvey; timeZone: string
 	const { t } = useTranslation("desk");
 	if (survey.mails.length === 0) return <span className="text-quiet">{t("responses.noMail")}</span>;
 	return (
-		<ul>
+		<ul className="min-w-48">
 			{survey.mails.map((mail) => (
 				<li key={`${mail.kind} ${mail.wave}`}>
 					<MailState mail={mail} timeZone={timeZone} />

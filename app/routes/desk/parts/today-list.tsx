@@ -19,7 +19,7 @@ type Task = { key: string; to: string; text: string };
 export function TodayList(props: TodayListProps) {
 	const { t } = useTranslation("desk");
 	const tasks = useTasks(props);
-	if (tasks.length === 0) return null;
+	if (tasks.length === 0) return <p className="text-quiet">{t("overview.nothing")}</p>;
 	return (
 		<Section title={t("overview.todo")}>
 			<ul className="border-t border-rule">
