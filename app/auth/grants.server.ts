@@ -1,6 +1,6 @@
 import { z } from "zod";
 import { logEvent } from "./event-log.server.ts";
-import { setScope, type Trx } from "./scope.server.ts";
+import { type Trx, underScope } from "./scope.server.ts";
 import type { Coordinator } from "./viewer.ts";
 
 export const GrantForm = z.discriminatedUnion("step", [
@@ -56,19 +56,12 @@ export async function listPeople(trx: Trx, _viewer: Coordinator) {
 }
 
 /**
- * Works with the directory of all states. A coordinator, who holds none, grants for operations and so must be told which
- * they are; nothing of them but that comes out.
+ * A coordinator, who holds no state, grants for operations and so must be told which they are; nothing else of the
+ * directory comes out.
  */
-async function acrossStates<T>(trx: Trx, work: () => Promise<T>): Promise<T> {
-	await setScope(trx, { kind: "network" });
-	const found = await work();
-	await setScope(trx, { kind: "desk", stateFips: [] });
-	return found;
-}
-
 async function operationNames(trx: Trx, ids: string[]): Promise<Map<string, string>> {
 	if (ids.length === 0) return new Map();
-	const rows = await acrossStates(trx, () =>
+	const rows = await underScope(trx, { kind: "network" }, () =>
 		trx
 			.selectFrom("directory.operation")
 			.select(["operation_id", "name"])
@@ -81,7 +74,7 @@ async function operationNames(trx: Trx, ids: string[]): Promise<Map<string, stri
 /** The one operation that an id or an e-mail address names. */
 async function findOperationNamed(trx: Trx, idOrEmail: string) {
 	const isId = z.guid().safeParse(idOrEmail).success;
-	const rows = await acrossStates(trx, () =>
+	const rows = await underScope(trx, { kind: "network" }, () =>
 		trx
 			.selectFrom("directory.operation")
 			.select(["operation_id", "state_fips"])

@@ -21,6 +21,8 @@ export type FrameRow = {
 	/** Set once the grower has begun, sent in or not. */
 	responseId: string | null;
 	submittedAt: Date | null;
+	/** Set where the grower took the answers back, and has not sent in again. */
+	withdrawnAt: Date | null;
 	/** What was mailed to it for this survey, oldest first. */
 	mails: Mail[];
 };
@@ -58,6 +60,7 @@ export async function listFrame(trx: Trx, viewer: Associate, surveyId: string, q
 			"f.disposition",
 			"r.response_id as responseId",
 			"r.submitted_at as submittedAt",
+			"r.withdrawn_at as withdrawnAt",
 		])
 		.orderBy(sortColumn[query.sort], (order) => order[query.direction]().nullsLast())
 		.orderBy("f.operation_id")

@@ -25,6 +25,7 @@ export async function listOperationSurveys(trx: Trx, viewer: Associate, operatio
 			"f.disposition",
 			"r.response_id as responseId",
 			"r.submitted_at as submittedAt",
+			"r.withdrawn_at as withdrawnAt",
 		])
 		.orderBy("s.season", "desc")
 		.orderBy("s.created_at", "desc")

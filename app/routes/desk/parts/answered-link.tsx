@@ -6,17 +6,20 @@ type AnsweredLinkProps = {
 	surveyId: string;
 	responseId: string | null;
 	submittedAt: Date | null;
+	withdrawnAt: Date | null;
 	/** Whose or which answers: rows of a list differ by it, which the day alone does not tell. */
 	of: string;
 	timeZone: string;
 };
 
 /** When answers came, leading to them; or that none did. */
-export function AnsweredLink({ surveyId, responseId, submittedAt, of, timeZone }: AnsweredLinkProps) {
+export function AnsweredLink({ surveyId, responseId, submittedAt, withdrawnAt, of, timeZone }: AnsweredLinkProps) {
 	const { t } = useTranslation("desk");
 	const format = useFormat();
 	if (!responseId) return <span className="text-quiet">{t("responses.notAnswered")}</span>;
-	const text = submittedAt ? format.dayOf(submittedAt, timeZone) : t("responses.begun");
+	const text = submittedAt
+		? format.dayOf(submittedAt, timeZone)
+		: t(withdrawnAt ? "responses.withdrawn" : "responses.begun");
 	return (
 		<Link
 			to={href("/desk/surveys/:surveyId/responses/:responseId", { surveyId, responseId })}
