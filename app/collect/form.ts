@@ -1,6 +1,7 @@
 import { z } from "zod";
 import { Words } from "#app/lib/words.ts";
 import type { Condition as ConditionShape } from "#app/lib/condition.ts";
+import { faultsOf } from "./form-faults.ts";
 
 export { Words };
 
@@ -13,7 +14,10 @@ export const Condition: z.ZodType<Condition> = z.lazy(() =>
 		z.object({
 			compare: z.enum(["<", "<=", "=", "!=", ">=", ">"]),
 			question: Key,
-			to: z.union([z.object({ value: z.union([z.number(), z.string()]) }), z.object({ question: Key })]),
+			to: z.union([
+				z.object({ value: z.union([z.number(), z.string()]) }),
+				z.object({ question: Key, times: z.number().positive().optional() }),
+			]),
 		}),
 		z.object({ all: z.array(Condition).min(1) }),
 		z.object({ any: z.array(Condition).min(1) }),
@@ -63,7 +67,8 @@ export const Question = z.discriminatedUnion("type", [
 	z.object({
 		...questionBase,
 		type: z.literal("several"),
-		options: z.array(z.object({ key: Key, text: Words })).min(2),
+		/** An option that is `alone`, such as "none of these", goes with no other. */
+		options: z.array(z.object({ key: Key, text: Words, alone: z.boolean().optional() })).min(2),
 	}),
 	z.object({
 		...questionBase,
@@ -125,13 +130,17 @@ export const Measure = z.object({
 });
 export type Measure = z.infer<typeof Measure>;
 
-export const FormDefinition = z.object({
-	key: Key,
-	title: Words,
-	minutes: z.number().int().min(1),
-	screens: z.array(Screen).min(1),
-	measures: z.array(Measure).min(1),
-});
+export const FormDefinition = z
+	.object({
+		key: Key,
+		title: Words,
+		minutes: z.number().int().min(1),
+		screens: z.array(Screen).min(1),
+		measures: z.array(Measure).min(1),
+	})
+	.superRefine((form, context) => {
+		for (const { path, message } of faultsOf(form)) context.addIssue({ code: "custom", path, message });
+	});
 export type FormDefinition = z.infer<typeof FormDefinition>;
 
 /**

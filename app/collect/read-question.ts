@@ -101,6 +101,10 @@ function readOptions(question: OptionQuestion, values: StepValues): Reading {
 	if (silences.length === 1) return silence(silences[0] === "_refused" ? "refused" : "dont_know");
 	const [first] = options;
 	if (first === undefined) return blank(question);
+	if (question.type === "several" && options.length > 1) {
+		const alone = question.options.some(({ key, alone: isAlone }) => isAlone && options.includes(key));
+		if (alone) return { code: "none_and_some" };
+	}
 	if (question.type === "several") return { answer: { kind: "given", value: options, given: null } };
 	// A radio group sends one value; two of them come from no page of ours.
 	return options.length > 1 ? { code: "choice_wrong" } : { answer: { kind: "given", value: first, given: null } };

@@ -5,18 +5,19 @@ import { readKind, readQuestion, type Reading, type ReadSettings } from "./read-
 import type { Step } from "./steps.ts";
 
 /*
- * Names of a step's fields: `<key>` (box, day, text, choice; several are repeated), `<key>_unit` where there are several,
- * `<key>_crate` for what the grower's own crate holds, `<key>_kind` for the ticks "dont_know" and "refused"; where there are options, these stand among them as `_dont_know`
- * and `_refused`. Shares that make a hundred have one pair of ticks, `screen_kind`, for all of them.
+ * Names of a step's fields: `<key>` (box, day, text, choice; several are repeated), `<key>_unit` where there are several
+ * units, `<key>_crate` for what the grower's own crate holds, `<key>_kind` for the ticks "dont_know" and "refused"; where
+ * there are options, these stand among them as `_dont_know` and `_refused`. Shares that make a hundred have one pair of
+ * ticks, `screen_kind`, for all of them.
  */
 export type { StepValues };
 export const screenKind = "screen_kind";
 
-export type ReadStep = { ok: true; answers: Answer[] } | { ok: false; problems: Problem[] };
+export type ReadStep = { ok: true; answers: Answer[] } | { ok: false; answers: Answer[]; problems: Problem[] };
 
 /**
  * Reads what was posted for a step. Its answers replace all that the step held; a question left blank that may be gives
- * none. On failure there is one problem a field, in the order of the questions, and nothing is kept.
+ * none. On failure there is one problem a field, in the order of the questions, beside the answers that could be read.
  */
 export function readStep(step: Step, questions: Question[], values: StepValues, settings: ReadSettings): ReadStep {
 	const plantingId = step.planting?.plantingId ?? null;
@@ -38,7 +39,7 @@ export function readStep(step: Step, questions: Question[], values: StepValues, 
 			problems.push({ field: box ? `${questionKey}_${box}` : questionKey, ...problem });
 		} else if (reading.answer) answers.push({ questionKey, plantingId, ...reading.answer });
 	}
-	return problems.length > 0 ? { ok: false, problems } : { ok: true, answers };
+	return problems.length > 0 ? { ok: false, answers, problems } : { ok: true, answers };
 }
 
 /** Who fills the same crate with two answers of a screen says once what it holds. */

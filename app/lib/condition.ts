@@ -3,15 +3,14 @@
  * row's own values come before those told once.
  */
 export type Condition =
-	| {
-			compare: "<" | "<=" | "=" | "!=" | ">=" | ">";
-			question: string;
-			to: { value: number | string } | { question: string };
-	  }
-	| { all: Condition[] }
-	| { any: Condition[] }
-	| { not: Condition }
-	| { any_planting: Condition };
+	Comparison | { all: Condition[] } | { any: Condition[] } | { not: Condition } | { any_planting: Condition };
+
+export type Comparison = {
+	compare: "<" | "<=" | "=" | "!=" | ">=" | ">";
+	question: string;
+	/** `times` multiplies the other number: "more than twice a normal crop". */
+	to: { value: number | string } | { question: string; times?: number };
+};
 
 export type ConditionValue = number | string | string[];
 /** What is known: null or undefined where nothing is (not answered, not known, refused). */
@@ -37,17 +36,33 @@ export function evaluate(condition: Condition, known: Known): boolean | null {
 			),
 		);
 	}
-	const right = "question" in condition.to ? known.value(condition.to.question) : condition.to.value;
+	const { to } = condition;
+	const right = "question" in to ? times(known.value(to.question), to.times) : to.value;
 	return compared(known.value(condition.question), condition.compare, right);
+}
+
+/** Every comparison of a condition, with whether it stands inside `any_planting`. */
+export function comparisonsIn(condition: Condition, inRows = false): { of: Comparison; inRows: boolean }[] {
+	if ("all" in condition) return condition.all.flatMap((inner) => comparisonsIn(inner, inRows));
+	if ("any" in condition) return condition.any.flatMap((inner) => comparisonsIn(inner, inRows));
+	if ("not" in condition) return comparisonsIn(condition.not, inRows);
+	if ("any_planting" in condition) return comparisonsIn(condition.any_planting, true);
+	return [{ of: condition, inRows }];
 }
 
 /** The names a condition speaks of, each once. */
 export function questionsIn(condition: Condition): string[] {
-	if ("all" in condition) return [...new Set(condition.all.flatMap(questionsIn))];
-	if ("any" in condition) return [...new Set(condition.any.flatMap(questionsIn))];
-	if ("not" in condition) return questionsIn(condition.not);
-	if ("any_planting" in condition) return questionsIn(condition.any_planting);
-	return "question" in condition.to ? [condition.question, condition.to.question] : [condition.question];
+	return [...new Set(comparisonsIn(condition).flatMap(({ of }) => questionsOf(of)))];
+}
+
+export function questionsOf({ question, to }: Comparison): string[] {
+	return "question" in to ? [question, to.question] : [question];
+}
+
+/** Only a number can be multiplied; what is not one is not known. */
+function times(value: ConditionValue | null | undefined, factor: number | undefined) {
+	if (factor === undefined) return value;
+	return typeof value === "number" ? value * factor : null;
 }
 
 function both(results: (boolean | null)[]): boolean | null {
@@ -66,7 +81,7 @@ function negated(result: boolean | null): boolean | null {
 
 function compared(
 	left: ConditionValue | null | undefined,
-	operator: Extract<Condition, { compare: string }>["compare"],
+	operator: Comparison["compare"],
 	right: ConditionValue | null | undefined,
 ): boolean | null {
 	if (left === null || left === undefined || right === null || right === undefined) return null;

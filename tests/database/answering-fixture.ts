@@ -4,8 +4,8 @@ import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Grower } from "#app/auth/viewer.ts";
 import type { StepValues } from "#app/collect/posted.ts";
 import { type AnswerPlace, findAnswering, saveStep, startResponse } from "#app/collect/responses.server.ts";
-import { readStep } from "#app/collect/step-fields.ts";
-import { listSteps, questionsAsked } from "#app/collect/steps.ts";
+import { readPostedStep } from "#app/collect/posted-step.ts";
+import { listSteps } from "#app/collect/steps.ts";
 import { submitResponse } from "#app/collect/submission.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
@@ -96,13 +96,11 @@ export async function typeStep(
 	return asGrower(grower, async (trx) => {
 		const answering = await findAnswering(trx, grower, place);
 		if (!answering) return "not_found" as const;
-		const { definition, plantings, answers, season } = answering;
-		const step = listSteps(definition, plantings, answers).find(({ key }) => key === stepKey);
-		if (!step) return "step_not_found" as const;
-		const questions = questionsAsked(step, definition, plantings, answers);
-		const read = readStep(step, questions, values, { language, season, today: `${season}-12-01` });
-		if (!read.ok) return read.problems.map(({ field, code }) => `${field}: ${code}`);
-		return saveStep(trx, grower, place, stepKey, read.answers);
+		const settings = { language, season: answering.season, today: `${answering.season}-12-01` };
+		const posted = readPostedStep(answering, stepKey, values, settings);
+		if (!posted) return "step_not_found" as const;
+		if (posted.problems.length > 0) return posted.problems.map(({ field, code }) => `${field}: ${code}`);
+		return saveStep(trx, grower, place, stepKey, posted.answers);
 	});
 }
 

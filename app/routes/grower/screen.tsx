@@ -4,7 +4,7 @@ import { data, Form, href, Link, redirect, useNavigation } from "react-router";
 import type { Route } from "./+types/screen";
 import { requireGrower } from "#app/auth/guard.server.ts";
 import { saveStep } from "#app/collect/responses.server.ts";
-import { readStep } from "#app/collect/step-fields.ts";
+import { readPostedStep } from "#app/collect/posted-step.ts";
 import { valuesOf } from "#app/collect/step-values.ts";
 import { listSteps, questionsAsked } from "#app/collect/steps.ts";
 import { Button } from "#app/components/button.tsx";
@@ -43,17 +43,17 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const grower = requireGrower(context, params);
 	const values = await readPosted(request);
-	const { definition, plantings, answers, season, timeZone } = await getAnswering(context, params);
-	const step = listSteps(definition, plantings, answers).find(({ key }) => key === params.screen);
-	if (!step) throw refusal("page_not_found");
-	const read = readStep(step, questionsAsked(step, definition, plantings, answers), values, {
+	const answering = await getAnswering(context, params);
+	const posted = readPostedStep(answering, params.screen, values, {
 		language: getLanguage(context),
-		season,
-		today: todayIn(timeZone),
+		season: answering.season,
+		today: todayIn(answering.timeZone),
 	});
-	if (!read.ok) return data({ values, problems: read.problems }, { status: 400 });
+	if (!posted) throw refusal("page_not_found");
+	const { step, questions, answers, problems } = posted;
+	if (problems.length > 0) return data({ values, questions, problems }, { status: 400 });
 
-	const outcome = await grower.transaction((trx) => saveStep(trx, grower.viewer, params, step.key, read.answers));
+	const outcome = await grower.transaction((trx) => saveStep(trx, grower.viewer, params, step.key, answers));
 	if (outcome === "closed") throw refusal("survey_closed");
 	if (outcome === "not_found") throw refusal("survey_not_found");
 	if (outcome === "step_not_found") throw refusal("page_not_found");
@@ -79,8 +79,8 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 	const { t, i18n } = useTranslation("grower");
 	const format = useFormat();
 	const busy = useNavigation().state === "submitting";
-	const { step, questions, number, of, previous } = loaderData;
-	const values = actionData?.values ?? loaderData.values;
+	const { step, number, of, previous } = loaderData;
+	const { questions, values } = actionData ?? loaderData;
 	const title = useStepTitle()(step);
 	const help = step.screen.help && wordsIn(step.screen.help, i18n.language);
 	const shared = new Set(step.screen.sumToHundred ?? []);

@@ -68,7 +68,7 @@ function BoxField({ question, planting, values, problems, mayNotKnow }: Question
 	const { t, i18n } = useTranslation("grower");
 	const label = wordsIn(question.text, i18n.language);
 	const typed = values[question.key];
-	const isText = question.type === "short_text" || question.type === "long_text";
+	const isNote = !question.required && (question.type === "short_text" || question.type === "long_text");
 	const crate = `${question.key}_crate`;
 	return (
 		<TextField
@@ -96,7 +96,7 @@ function BoxField({ question, planting, values, problems, mayNotKnow }: Question
 						/>
 					)}
 					{/* A note that nobody has to write needs no box for not writing it. */}
-					{mayNotKnow && !isText && (
+					{mayNotKnow && !isNote && (
 						<UnknownBoxes
 							name={`${question.key}_kind`}
 							about={t("unknown.about", { question: label })}

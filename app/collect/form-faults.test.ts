@@ -1,0 +1,227 @@
+import { describe, expect, test } from "vitest";
+import type { Condition } from "#app/lib/condition.ts";
+import { FormDefinition, type Measure, type Question, type Screen } from "./form.ts";
+import { afterHarvest } from "./forms/after-harvest.ts";
+
+const words = { en: "Text", es: "Texto" };
+const base = { text: words, required: false, sensitive: false };
+const option = (key: string) => ({ key, text: words });
+const choice = (key: string, condition?: Condition): Question => ({
+	...base,
+	key,
+	type: "choice",
+	options: [option("yes"), option("no")],
+	condition,
+});
+const trees = (key: string): Question => ({ ...base, key, type: "number", unitFamily: "trees" });
+const percent = (key: string): Question => ({ ...base, key, type: "percent" });
+const day = (key: string, notBefore?: string): Question => ({ ...base, key, type: "date", notBefore });
+const screen = (key: string, questions: Question[], more: Partial<Screen> = {}): Screen => ({
+	key,
+	title: words,
+	perPlanting: false,
+	questions,
+	...more,
+});
+const is = (question: string, value: string | number = "yes"): Condition => ({ compare: "=", question, to: { value } });
+const total = (numerator: Measure["numerator"]): Measure => ({
+	key: "sum",
+	kind: "total",
+	label: words,
+	description: words,
+	unit: "trees",
+	decimals: 0,
+	worse: null,
+	hue: "yield",
+	numerator,
+	denominator: null,
+	scale: 1,
+	acrossCrops: true,
+	base: false,
+});
+const sumOf = (question: string, share?: string) => total({ terms: [{ question, times: 1, share }] });
+const faults = (screens: Screen[], measures: Measure[] = [total({ one: true })]) => {
+	const parsed = FormDefinition.safeParse({ key: "form", title: words, minutes: 1, screens, measures });
+	return parsed.success ? [] : parsed.error.issues.map(({ message }) => message);
+};
+
+test("a form that is ready to use has no fault", () => {
+	expect(FormDefinition.safeParse(afterHarvest).error).toBeUndefined();
+});
+
+describe("conditions", () => {
+	const seen = screen("first", [choice("seen")]);
+	const table = screen("table", [trees("planted"), choice("sprayed")], { perPlanting: true });
+
+	test("on earlier questions, of plantings or of the operation, are fine", () => {
+		expect(faults([seen, screen("second", [choice("spread", is("seen"))])])).toEqual([]);
+		expect(faults([screen("only", [choice("seen"), choice("spread", { not: is("seen", "no") })])])).toEqual([]);
+		expect(faults([seen, { ...table, questions: [choice("sprayed", is("seen"))] }])).toEqual([]);
+		const any: Condition = { any_planting: { all: [is("sprayed"), { any: [is("planted", 0)] }] } };
+		expect(faults([table, screen("after", [choice("why")], { condition: any })])).toEqual([]);
+	});
+
+	test.each<[string, Screen[], string]>([
+		["an unknown question", [screen("a", [choice("x", is("y"))])], 'the condition of "x" names no question "y"'],
+		["itself", [screen("a", [choice("x", is("x"))])], 'the condition of "x" waits for "x" itself'],
+		[
+			"a later question",
+			[screen("a", [choice("x", is("seen"))]), seen],
+			'the condition of "x" waits for "seen", which is asked later',
+		],
+		[
+			"a question that waits for it in turn",
+			[screen("a", [choice("x", is("z"))]), screen("b", [choice("y", is("x"))]), screen("c", [choice("z", is("y"))])],
+			'the condition of "x" waits for "z", which waits for "x"',
+		],
+		[
+			"a screen that waits for it in turn",
+			[screen("a", [choice("x", is("y"))]), screen("b", [choice("y")], { condition: is("x") })],
+			'the condition of "x" waits for "y", which waits for "x"',
+		],
+		[
+			"a question of its own screen",
+			[screen("a", [choice("x"), choice("y")], { condition: is("y") })],
+			'the condition of screen "a" waits for "y", which is asked later',
+		],
+		[
+			"an answer that each planting has",
+			[table, screen("after", [choice("why", is("sprayed"))])],
+			'the condition of "why" asks "sprayed" of no planting: put it into any_planting',
+		],
+		[
+			"an option that is none",
+			[seen, screen("b", [choice("x", is("seen", "perhaps"))])],
+			'the condition of "x" asks for "perhaps", no option of "seen"',
+		],
+		[
+			"a number of what is a choice",
+			[seen, screen("b", [choice("x", is("seen", 1))])],
+			'the condition of "x" asks for "1", no option of "seen"',
+		],
+		[
+			"a text of what is a number",
+			[screen("a", [trees("n"), choice("x", is("n", "many"))])],
+			'the condition of "x" compares "n" with "many"',
+		],
+		[
+			"a number beside a day",
+			[screen("a", [trees("n"), day("d"), choice("x", { compare: "<", question: "n", to: { question: "d" } })])],
+			'the condition of "x" compares "n" with "d"',
+		],
+		[
+			"twice a day",
+			[
+				screen("a", [
+					day("c"),
+					day("d"),
+					choice("x", { compare: "<", question: "c", to: { question: "d", times: 2 } }),
+				]),
+			],
+			'the condition of "x" multiplies "d", which is no number',
+		],
+	])("on %s are refused", (_kind, screens, message) => {
+		expect(faults(screens)).toEqual([message]);
+	});
+});
+
+describe("keys", () => {
+	test.each<[string, Screen[], string]>([
+		["screens", [screen("a", [choice("x")]), screen("a", [choice("y")])], 'two things are screen "a"'],
+		[
+			"questions",
+			[screen("a", [choice("x")]), screen("b", [choice("x")])],
+			'"x" names two questions, or a field beside another',
+		],
+		[
+			"fields",
+			[screen("a", [choice("x"), choice("x_unit")])],
+			'"x_unit" names two questions, or a field beside another',
+		],
+		[
+			"the form's own fields",
+			[screen("a", [choice("confirm")])],
+			'"confirm" names two questions, or a field beside another',
+		],
+		[
+			"options",
+			[screen("a", [{ ...base, key: "x", type: "rating", options: [option("low"), option("low")] }])],
+			'two things are option of "x" "low"',
+		],
+	])("of %s are there once", (_kind, screens, message) => expect(faults(screens)).toEqual([message]));
+
+	test("of measures are there once", () => {
+		const one = total({ one: true });
+		expect(faults([screen("a", [choice("x")])], [one, one])).toEqual(['two things are measure "sum"']);
+	});
+});
+
+const shares = (keys: string[]) => [
+	screen("a", [percent("p"), trees("n")], { sumToHundred: keys }),
+	screen("b", [percent("q")]),
+];
+
+describe("sums and days", () => {
+	test("only percent questions of the screen make a hundred", () => {
+		expect(faults(shares(["p"]))).toEqual([]);
+		expect(faults(shares(["p", "n", "q", "r"]))).toEqual(
+			["n", "q", "r"].map((key) => `"${key}" is no percent question of screen "a"`),
+		);
+	});
+	test("a day comes after an earlier day of its screen", () => {
+		expect(faults([screen("a", [day("c"), day("d", "c")])])).toEqual([]);
+		expect(faults([screen("a", [day("d", "c"), day("c")])])).toEqual([
+			'"d" comes after "c", which is no earlier date of its screen',
+		]);
+	});
+});
+
+describe("measures", () => {
+	const screens = [
+		screen("table", [trees("planted"), choice("sprayed"), percent("part")], { perPlanting: true }),
+		screen("once", [percent("cause"), choice("seen")]),
+	];
+	test.each<[string, Measure, string[]]>([
+		["a number", sumOf("planted", "cause"), []],
+		["an unknown question", sumOf("felled"), ['measure "sum" names no question "felled"']],
+		["a choice", sumOf("seen"), ['measure "sum" cannot sum "seen", which is no number']],
+		["an unknown share", sumOf("planted", "blame"), ['measure "sum" names no question "blame"']],
+		[
+			"a share that each planting has",
+			sumOf("planted", "part"),
+			['"part" of measure "sum" is no percent question that is asked once'],
+		],
+		["a planting's choice", total({ indicator: { any_planting: is("sprayed") } }), []],
+		[
+			"a choice that each planting has",
+			total({ indicator: is("sprayed") }),
+			['measure "sum" cannot sum "sprayed": put it into any_planting'],
+		],
+		[
+			"an unknown condition",
+			total({ indicator: is("felled") }),
+			['the indicator of measure "sum" names no question "felled"'],
+		],
+	])("of %s", (_kind, measure, messages) => expect(faults(screens, [measure])).toEqual(messages));
+
+	test("have a denominator that is known", () => {
+		const ratio: Measure = {
+			...sumOf("planted"),
+			kind: "ratio",
+			denominator: { terms: [{ question: "x", times: 1 }] },
+		};
+		expect(faults(screens, [ratio])).toEqual(['measure "sum" names no question "x"']);
+	});
+});
+
+test("a fault says where it is", () => {
+	const screens = [screen("a", [choice("x"), choice("y", is("z"))])];
+	const parsed = FormDefinition.safeParse({
+		key: "form",
+		title: words,
+		minutes: 1,
+		screens,
+		measures: [total({ one: true })],
+	});
+	expect(parsed.error?.issues[0]?.path).toEqual(["screens", 0, "questions", 1, "condition"]);
+});

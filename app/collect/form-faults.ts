@@ -1,0 +1,106 @@
+import { comparisonsIn, questionsOf } from "#app/lib/condition.ts";
+import { conditionFaults, type Fault, isNumber, type Placed } from "./condition-faults.ts";
+import type { FormDefinition, Quantity, Screen } from "./form.ts";
+
+type Form = Pick<FormDefinition, "screens" | "measures">;
+
+/**
+ * Everything that would make a form ask or count wrongly: one key for two things, a condition on a question that comes
+ * later or never, shares and measures of what is no number.
+ */
+export function* faultsOf(form: Form): Generator<Fault> {
+	const placed = placeQuestions(form.screens);
+	const byKey = new Map(placed.map((one) => [one.question.key, one]));
+	yield* keyFaults(form, placed);
+	for (const [index, screen] of form.screens.entries()) yield* screenFaults(screen, ["screens", index], byKey);
+	for (const one of placed) {
+		const { question, at, path, screen } = one;
+		const asked = { what: `the condition of "${question.key}"`, before: at, perPlanting: screen.perPlanting };
+		if (question.condition) yield* conditionFaults(question.condition, asked, path, byKey);
+	}
+	for (const [index, measure] of form.measures.entries()) {
+		for (const part of ["numerator", "denominator"] as const) {
+			const quantity = measure[part];
+			if (quantity) yield* quantityFaults(quantity, `measure "${measure.key}"`, ["measures", index, part], byKey);
+		}
+	}
+}
+
+function placeQuestions(screens: Screen[]): Placed[] {
+	const placed = screens.flatMap((screen, s) =>
+		screen.questions.map((question, q) => ({ question, screen, path: ["screens", s, "questions", q] })),
+	);
+	return placed.map((one, at) => ({ ...one, at }));
+}
+
+function* keyFaults(form: Form, placed: Placed[]): Generator<Fault> {
+	yield* repeated(form.screens, "screen", ["screens"]);
+	yield* repeated(form.measures, "measure", ["measures"]);
+	const taken = new Set(["screen_kind", "confirm"]);
+	for (const { question, path } of placed) {
+		if (taken.has(question.key))
+			yield { path: [...path, "key"], message: `"${question.key}" names two questions, or a field beside another` };
+		for (const end of ["", "_unit", "_crate", "_kind"]) taken.add(question.key + end);
+		if ("options" in question) yield* repeated(question.options, `option of "${question.key}"`, [...path, "options"]);
+	}
+}
+
+function* repeated(things: { key: string }[], what: string, path: (string | number)[]): Generator<Fault> {
+	const seen = new Set<string>();
+	for (const [index, { key }] of things.entries()) {
+		if (seen.has(key)) yield { path: [...path, index, "key"], message: `two things are ${what} "${key}"` };
+		seen.add(key);
+	}
+}
+
+function* screenFaults(screen: Screen, path: (string | number)[], byKey: Map<string, Placed>): Generator<Fault> {
+	const first = byKey.get(screen.questions[0]?.key ?? "")?.at ?? 0;
+	const asked = { what: `the condition of screen "${screen.key}"`, before: first, perPlanting: screen.perPlanting };
+	if (screen.condition) yield* conditionFaults(screen.condition, asked, path, byKey);
+	const ofScreen = (key: string) => screen.questions.find((question) => question.key === key);
+	for (const key of screen.sumToHundred ?? []) {
+		if (ofScreen(key)?.type !== "percent")
+			yield { path: [...path, "sumToHundred"], message: `"${key}" is no percent question of screen "${screen.key}"` };
+	}
+	for (const [index, question] of screen.questions.entries()) {
+		if (question.type !== "date" || question.notBefore === undefined) continue;
+		const earlier = screen.questions.slice(0, index).find(({ key }) => key === question.notBefore);
+		if (earlier?.type !== "date")
+			yield {
+				path: [...path, "questions", index, "notBefore"],
+				message: `"${question.key}" comes after "${question.notBefore}", which is no earlier date of its screen`,
+			};
+	}
+}
+
+function* quantityFaults(
+	quantity: Quantity,
+	what: string,
+	path: (string | number)[],
+	byKey: Map<string, Placed>,
+): Generator<Fault> {
+	if ("one" in quantity) return;
+	if ("indicator" in quantity) {
+		// Over a whole operation, so every planting's number stands for the sum of the crop.
+		const asked = { what: `the indicator of ${what}`, before: Infinity, perPlanting: true };
+		yield* conditionFaults(quantity.indicator, asked, path, byKey);
+		for (const { of: comparison, inRows } of comparisonsIn(quantity.indicator)) {
+			for (const key of questionsOf(comparison)) {
+				const named = byKey.get(key);
+				if (named?.screen.perPlanting && !inRows && !isNumber(named.question))
+					yield { path, message: `${what} cannot sum "${key}": put it into any_planting` };
+			}
+		}
+		return;
+	}
+	for (const { question, share } of quantity.terms) {
+		const named = byKey.get(question);
+		if (!named) yield { path, message: `${what} names no question "${question}"` };
+		else if (!isNumber(named.question)) yield { path, message: `${what} cannot sum "${question}", which is no number` };
+		if (share === undefined) continue;
+		const of = byKey.get(share);
+		if (!of) yield { path, message: `${what} names no question "${share}"` };
+		else if (of.question.type !== "percent" || of.screen.perPlanting)
+			yield { path, message: `"${share}" of ${what} is no percent question that is asked once` };
+	}
+}
