@@ -45,7 +45,12 @@ export default [
 		...prefix("orchard", [
 			layout("routes/grower/orchard-layout.tsx", [
 				index("routes/grower/orchard.tsx"),
-				route(":operationId/answers/:surveyId", "routes/grower/own-answers.tsx"),
+				...prefix(":operationId", [
+					route("answers/:surveyId", "routes/grower/own-answers.tsx"),
+					route("plantings", "routes/grower/plantings.tsx"),
+					route("plantings/new", "routes/grower/planting-new.tsx"),
+					route("plantings/:plantingId", "routes/grower/planting.tsx"),
+				]),
 			]),
 		]),
 	]),

@@ -273,6 +273,7 @@ export interface DirectoryOwner {
 export interface DirectoryPlanting {
   area_acres: number | null;
   bearing_trees: Generated<number>;
+  created_at: Generated<Timestamp>;
   crop_key: string;
   cultivar: Generated<string>;
   operation_id: string;

@@ -82,8 +82,9 @@ export async function findNewestSubmission(trx: Trx, responseId: string): Promis
 }
 
 /**
- * What an operation is asked about: its standing plantings of the crops with which it stands in the survey's frame, and
- * those taken out since it answered about them. A crop planted after the frame was frozen has no place in its strata.
+ * What an operation is asked about: its plantings of the crops with which it stands in the survey's frame that stand now,
+ * stood when the survey opened, or were answered about. What was pulled out since still bore, or did not, in the season
+ * that is asked about. A crop planted after the frame was frozen has no place in its strata.
  */
 export async function listPlantingsAsked(
 	trx: Trx,
@@ -97,16 +98,25 @@ export async function listPlantingsAsked(
 		.innerJoin("collect.frame_crop as f", (join) =>
 			join.onRef("f.operation_id", "=", "p.operation_id").onRef("f.crop_key", "=", "p.crop_key"),
 		)
+		.innerJoin("collect.survey as s", "s.survey_id", "f.survey_id")
+		.innerJoin("collect.frame_operation as o", (join) =>
+			join.onRef("o.survey_id", "=", "f.survey_id").onRef("o.operation_id", "=", "f.operation_id"),
+		)
+		.innerJoin("directory.state as z", "z.state_fips", "o.state_fips")
 		.where("p.operation_id", "=", operationId)
 		.where("f.survey_id", "=", surveyId)
 		.orderBy("c.position")
 		.orderBy("p.cultivar")
 		.orderBy("p.planting_id")
-		.select(["p.planting_id", "p.crop_key", "p.cultivar", "p.bearing_trees", "p.removed_on"])
-		.select(["c.plant_kind", "c.bushel_lb"])
+		.select(["p.planting_id", "p.crop_key", "p.cultivar", "p.bearing_trees", "c.plant_kind", "c.bushel_lb"])
+		.select(
+			// Pulled out on the day of the opening, it stood that morning.
+			sql<boolean>`p.removed_on is null or (p.created_at <= s.opened_at
+				and p.removed_on >= (s.opened_at at time zone z.time_zone)::date)`.as("stood"),
+		)
 		.execute();
 	return rows
-		.filter((row) => row.removed_on === null || answered.has(row.planting_id))
+		.filter((row) => row.stood || answered.has(row.planting_id))
 		.map((row) => ({
 			plantingId: row.planting_id,
 			cropKey: row.crop_key,

@@ -4,21 +4,34 @@ import type { z } from "zod";
 /** One thing to mend: the field's name and a code whose words are `common:problem.<code>`. */
 export type Problem = { field: string; code: string; detail?: Record<string, string | number> };
 export type FormValues = Record<string, unknown>;
-export type ParsedForm<T> = { ok: true; value: T } | { ok: false; values: FormValues; problems: Problem[] };
+export type ParsedForm<T> =
+	{ ok: true; value: T; values: FormValues } | { ok: false; values: FormValues; problems: Problem[] };
 
 /**
- * Reads a sent form against its schema. Names like `plantings[0].trees` become nested values. On failure what was typed
- * comes back whole, with one problem a field: a schema's own message when it is a code (`empty`, `too_long`), else one
+ * Reads a sent form against its schema. Names like `plantings[0].trees` become nested values. What was typed
+ * comes back whole, on failure with one problem a field: a schema's own message when it is a code (`empty`, `too_long`), else one
  * made from the kind of failure.
  */
 export function parseForm<S extends z.ZodType>(schema: S, form: FormData): ParsedForm<z.infer<S>> {
 	const submission = parseWithZod(form, { schema: schema as never });
-	if (submission.status === "success") return { ok: true, value: submission.value as z.infer<S> };
+	const values = submission.payload;
+	if (submission.status === "success") return { ok: true, value: submission.value as z.infer<S>, values };
 	const problems = Object.entries(submission.error ?? {}).flatMap(([field, messages]) => {
 		const message = messages?.[0];
-		return message ? [{ field, code: toCode(message) }] : [];
+		return message ? [{ field, ...toProblem(message) }] : [];
 	});
-	return { ok: false, values: submission.payload, problems };
+	return { ok: false, values, problems };
+}
+
+/** The message by which a schema tells a problem with its detail, such as the largest number that is taken. */
+export function problemMessage({ code, detail }: Omit<Problem, "field">): string {
+	return detail ? `${code} ${JSON.stringify(detail)}` : code;
+}
+
+function toProblem(message: string): Omit<Problem, "field"> {
+	const told = /^([a-z_]+) (\{.*\})$/.exec(message);
+	if (told) return { code: told[1]!, detail: JSON.parse(told[2]!) as Problem["detail"] };
+	return { code: toCode(message) };
 }
 
 function toCode(message: string): string {

@@ -49,7 +49,7 @@ describe("what is asked", () => {
 			more: [
 				{ crop: "plum", trees: 7 },
 				{ crop: "apple", cultivar: "Amber Dot", trees: 3 },
-				{ crop: "apple", removedOn: "2030-04-01" },
+				{ crop: "apple", removedOn: "2020-04-01" },
 				{ crop: "pawpaw" },
 			],
 		});
@@ -74,14 +74,25 @@ describe("what is asked", () => {
 		expect(answering.plantings[1]).toMatchObject({ cultivar: "Amber Dot", bearingTrees: 3, bushelLb: 42 });
 	});
 
-	test("a planting taken out after it was answered about is still shown", async () => {
+	test("what was pulled out since the survey opened is asked about, and before it only what was answered about", async () => {
 		const { place, grower, plantingIds, step } = await askGrower(owner, associate, { more: [{ crop: "plum" }] });
+		const pullOut = (day: string) =>
+			owner.query("update directory.planting set removed_on = $2 where operation_id = $1", [place.operationId, day]);
+		const asked = async () => (await answeringOf(grower, place)).plantings.map(({ plantingId }) => plantingId);
+		await pullOut("2031-08-01");
+		expect(await asked()).toEqual(plantingIds);
 		await typeStep(grower, place, step, pounds(40, 4000, 4000));
-		await owner.query("update directory.planting set removed_on = '2031-08-01' where operation_id = $1", [
-			place.operationId,
-		]);
+		await pullOut("2020-08-01");
+		expect(await asked()).toEqual([plantingIds[0]]);
+	});
+
+	test("a planting written down after the survey opened and pulled out again is not asked about", async () => {
+		const { place, grower, plantingIds } = await askGrower(owner, associate);
+		const plantingId = await addPlanting(owner, place.operationId, { crop: "apple", cultivar: "By mistake" });
+		expect((await answeringOf(grower, place)).plantings).toHaveLength(2);
+		await owner.query("update directory.planting set removed_on = current_date where planting_id = $1", [plantingId]);
 		const { plantings } = await answeringOf(grower, place);
-		expect(plantings.map(({ plantingId }) => plantingId)).toEqual([plantingIds[0]]);
+		expect(plantings.map((planting) => planting.plantingId)).toEqual(plantingIds);
 	});
 
 	test("causes are asked when something was lost, or may have been", async () => {

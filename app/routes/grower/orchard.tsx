@@ -10,6 +10,7 @@ import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { usePlantingName } from "./parts/planting-name.ts";
 
 export async function loader({ context }: Route.LoaderArgs) {
 	const grower = requireOrchard(context);
@@ -95,11 +96,12 @@ function HowItStands({ survey }: { survey: Operation["surveys"][number] }) {
 	return t(isOpen ? "home.notAnswered" : "home.missed");
 }
 
-/** What the network has written down about the operation, for the grower to see and have mended. */
+/** What the network has written down about the operation, and where the grower mends it. */
 function Directory({ operation }: { operation: Operation }) {
 	const { t } = useTranslation("orchard");
 	const format = useFormat();
-	const { contactName, email, phone, countyName, stateFips, plantings } = operation;
+	const nameOf = usePlantingName();
+	const { operationId, name, contactName, email, phone, countyName, stateFips, plantings } = operation;
 	return (
 		<Section title={t("home.known")} level={3}>
 			<DescriptionList
@@ -111,12 +113,35 @@ function Directory({ operation }: { operation: Operation }) {
 						term: t("grower:link.county"),
 						detail: t("home.place", { county: countyName, state: t(`common:state.${stateFips}`) }),
 					},
-					...plantings.map((planting) => ({
-						term: [t(`common:crop.${planting.cropKey}`), planting.cultivar].filter(Boolean).join(", "),
-						detail: format.quantity(planting.bearingTrees, "trees"),
-					})),
+					{
+						term: t("home.plantings"),
+						detail:
+							plantings.length === 0
+								? t("home.nothing")
+								: plantings.map((planting) => (
+										<span key={planting.plantingId} className="block">
+											{t("home.planting", {
+												planting: nameOf(planting),
+												trees: format.quantity(planting.bearingTrees, "trees"),
+											})}
+										</span>
+									)),
+					},
 				]}
 			/>
+			<ul className="no-print mt-3">
+				{(["plantings"] as const).map((page) => (
+					<li key={page}>
+						<Link
+							to={href(`/orchard/:operationId/${page}`, { operationId })}
+							aria-label={t("home.toOf", { page: t(`home.to.${page}`), operation: name })}
+							className="inline-flex min-h-11 items-center"
+						>
+							{t(`home.to.${page}`)}
+						</Link>
+					</li>
+				))}
+			</ul>
 			<p className="mt-3 text-base text-quiet">{t("home.mend")}</p>
 		</Section>
 	);
