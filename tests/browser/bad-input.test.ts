@@ -97,6 +97,19 @@ test("opening a link changes nothing, and shows no whole name, contact or answer
 	expect(text).not.toContain(operationId);
 });
 
+test("a link's page is in the language the grower is known to read, until the visitor chooses", async () => {
+	const { link, operationId } = await asked();
+	await owner.query("update directory.operation set language = 'es' where operation_id = $1", [operationId]);
+	const visitor = httpVisitor(stack.baseUrl, "en");
+	const { status, location } = await visitor.get(link);
+	expect(status).toBe(302);
+	expect((await visitor.get(location)).text).toContain("Abrir mi encuesta");
+	const withoutCookies = httpVisitor(stack.baseUrl, "en");
+	expect((await withoutCookies.get(new URL(location).pathname + new URL(location).search)).status).toBe(200);
+	await visitor.post("/language", { language: "en", returnTo: link });
+	expect((await visitor.get(link)).text).toContain("Open my survey");
+});
+
 test("without the session a link opened, the survey's address opens nothing", async () => {
 	const { address } = await begun();
 	const stranger = httpVisitor(stack.baseUrl, "es");

@@ -7,19 +7,33 @@ import { findLink, markOpened, partOf } from "#app/collect/personal-link.server.
 import { Button } from "#app/components/button.tsx";
 import { DescriptionList } from "#app/components/description-list.tsx";
 import { Page } from "#app/components/page.tsx";
-import { wordsIn } from "#app/i18n/language.ts";
-import { languageCookie } from "#app/i18n/middleware.server.ts";
+import { type Language, wordsIn } from "#app/i18n/language.ts";
+import { getLanguage, languageCookie } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
 
 /** Looks only, for mail scanners open links too; a forwarded link shows no whole name. */
-export async function loader({ params }: Route.LoaderArgs) {
+export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const link = await scopedTransaction({ kind: "network" }, (trx) => findLink(trx, params.token));
 	if (!link) throw refusal("link_not_valid");
+	await readInOwnLanguage(context, request, link.language);
 	return { title: link.title, season: link.season, operation: partOf(link.operationName), county: link.countyName };
 }
 
+/**
+ * The directory knows which language this grower reads, until the visitor says otherwise: a phone is often set to
+ * another. Once only, so that a browser that keeps no cookies still gets the page.
+ */
+async function readInOwnLanguage(context: Route.LoaderArgs["context"], request: Request, language: Language) {
+	const { pathname, searchParams } = new URL(request.url);
+	if (language === getLanguage(context) || searchParams.has("language")) return;
+	if (await languageCookie.parse(request.headers.get("cookie"))) return;
+	throw redirect(`${pathname}?language=${language}`, {
+		headers: { "set-cookie": await languageCookie.serialize(language) },
+	});
+}
+
 /** The button trades the token for a session, and the browser goes on to an address that does not hold it. */
-export async function action({ context, params, request }: Route.ActionArgs) {
+export async function action({ context, params }: Route.ActionArgs) {
 	const link = await scopedTransaction({ kind: "network" }, async (trx) => {
 		const found = await findLink(trx, params.token);
 		if (found) await markOpened(trx, found.personalLinkId);
@@ -28,12 +42,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	if (!link) throw refusal("link_not_valid");
 	context.get(sessionContext).set("personalLinkId", link.personalLinkId);
 	const { surveyId, operationId } = link;
-	const chosen: unknown = await languageCookie.parse(request.headers.get("cookie"));
-	return redirect(href("/answer/:surveyId/:operationId", { surveyId, operationId }), {
-		status: 303,
-		// The directory knows which language this grower reads, until the visitor says otherwise.
-		headers: chosen ? {} : { "set-cookie": await languageCookie.serialize(link.language) },
-	});
+	return redirect(href("/answer/:surveyId/:operationId", { surveyId, operationId }), 303);
 }
 
 export default function LinkPage({ loaderData }: Route.ComponentProps) {
