@@ -47,6 +47,12 @@ export default function Responses({ loaderData, params }: Route.ComponentProps) 
 				<input type="hidden" name="sort" value={query.sort} />
 				<input type="hidden" name="direction" value={query.direction} />
 			</SearchBar>
+			{/* On paper the fields are gone, and with them what the list is of. */}
+			<p className="hidden pb-2 font-bold print:block">
+				{query.q
+					? t("responses.printedSearch", { list: t(`responses.filter.${query.show}`), q: query.q })
+					: t(`responses.filter.${query.show}`)}
+			</p>
 			<FrameTable
 				rows={frame.rows}
 				sort={{ key: query.sort, direction: query.direction }}

@@ -24,11 +24,11 @@ export function TodayList(props: TodayListProps) {
 		<Section title={t("overview.todo")}>
 			<ul className="border-t border-rule">
 				{tasks.map(({ key, to, text }) => (
-					<li key={key} className="border-b border-rule">
-						<Link to={to} className="flex min-h-11 items-center gap-3 py-2">
-							<span aria-hidden="true" className="text-quince">
-								◆
-							</span>
+					<li key={key} className="flex items-center gap-3 border-b border-rule">
+						<span aria-hidden="true" className="text-quince">
+							◆
+						</span>
+						<Link to={to} className="inline-flex min-h-11 items-center py-2">
 							{text}
 						</Link>
 					</li>
