@@ -54,6 +54,7 @@ export default [
 			]),
 		]),
 	]),
+	route("answer/:surveyId/:operationId/keep/:screen", "routes/grower/keep.ts"),
 
 	...prefix("desk", [
 		layout("routes/desk/layout.tsx", [

@@ -192,6 +192,7 @@ export interface CollectResponse {
   response_id: Generated<string>;
   started_at: Generated<Timestamp>;
   state_fips: string;
+  step_changes: Generated<Json>;
   submitted_at: Timestamp | null;
   submitted_version: Generated<number>;
   survey_id: string;

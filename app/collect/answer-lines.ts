@@ -1,6 +1,6 @@
 import type { Words } from "#app/lib/words.ts";
 import type { Answer, FormDefinition, Question } from "./form.ts";
-import { answersByPlace, listAsked, placeOf, type PlantingAsked } from "./steps.ts";
+import { answersByPlace, listAllSteps, listAsked, placeOf, type PlantingAsked } from "./steps.ts";
 import { fromCanonical, type Unit, unitFamilyOf, unitGiven } from "./units.ts";
 
 export type ShownUnit = Unit | "tree" | "bush" | "plants" | "percent" | "count";
@@ -40,6 +40,25 @@ export function listAnswerLines(
 			shown: shownAs(question, byPlace.get(placeOf(question.key, step.planting?.plantingId ?? null)), step.planting),
 		})),
 	}));
+}
+
+export type Difference = { questionKey: string; text: Words; mine: ShownAnswer; theirs: ShownAnswer };
+
+/** What a step would say with `mine` in place of the answers it holds, question by question where the two differ. */
+export function listDifferences(
+	{ definition, plantings, answers }: { definition: FormDefinition; plantings: PlantingAsked[]; answers: Answer[] },
+	stepKey: string,
+	mine: Answer[],
+): Difference[] {
+	const step = listAllSteps(definition, plantings).find(({ key }) => key === stepKey);
+	const planting = step?.planting ?? null;
+	const [here, there] = [answersByPlace(mine), answersByPlace(answers)];
+	return (step?.screen.questions ?? []).flatMap((question) => {
+		const at = placeOf(question.key, planting?.plantingId ?? null);
+		const [one, other] = [shownAs(question, here.get(at), planting), shownAs(question, there.get(at), planting)];
+		const same = JSON.stringify(one) === JSON.stringify(other);
+		return same ? [] : [{ questionKey: question.key, text: question.label ?? question.text, mine: one, theirs: other }];
+	});
 }
 
 function shownAs(question: Question, answer: Answer | undefined, planting: PlantingAsked | null): ShownAnswer {

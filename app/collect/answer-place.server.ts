@@ -2,6 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
 import type { Words } from "#app/lib/words.ts";
+import type { StepChanges } from "./step-change.ts";
 import { isId } from "./surveys.server.ts";
 import { isMassUnit } from "./units.ts";
 
@@ -58,6 +59,7 @@ function findResponse(trx: Trx, { surveyId, operationId }: AnswerPlace) {
 			"response_id as responseId",
 			"pledge_version as pledgeVersion",
 			"draft_version as draftVersion",
+			sql<StepChanges>`step_changes`.as("stepChanges"),
 			"submitted_version as submittedVersion",
 			"receipt_code as receiptCode",
 			"submitted_at as submittedAt",

@@ -1,11 +1,10 @@
 import type { Problem } from "#app/lib/parse-form.ts";
-import type { Answer, FormDefinition, Question } from "./form.ts";
+import type { Answer, Question } from "./form.ts";
 import type { StepValues } from "./posted.ts";
 import type { ReadSettings } from "./read-question.ts";
 import { readStep } from "./step-fields.ts";
-import { listAsked, type PlantingAsked, questionsAsked, type Step } from "./steps.ts";
+import { type Asking, listAsked, questionsAsked, type Step } from "./steps.ts";
 
-export type Asking = { definition: FormDefinition; plantings: PlantingAsked[]; answers: Answer[] };
 /** `questions` are those that the posted answers leave asked; with a problem, nothing is to be kept. */
 export type PostedStep = { step: Step; questions: Question[]; answers: Answer[]; problems: Problem[] };
 

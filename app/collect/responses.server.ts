@@ -9,11 +9,11 @@ import {
 	listAnswers,
 	listCrates,
 	listPlantingsAsked,
-	replaceAnswers,
 	sameAnswers,
 } from "./answer-rows.server.ts";
 import { type Answer, FormDefinition } from "./form.ts";
-import { keptAnswers, listAsked, type PlantingAsked } from "./steps.ts";
+import type { StepChanges } from "./step-change.ts";
+import { keptAnswers, type PlantingAsked } from "./steps.ts";
 import type { MassUnit } from "./units.ts";
 
 export type { AnswerPlace };
@@ -44,6 +44,7 @@ export type ResponseSoFar = {
 	responseId: string;
 	pledgeVersion: string;
 	draftVersion: number;
+	stepChanges: StepChanges;
 	submittedVersion: number;
 	receiptCode: string | null;
 	submittedAt: Date | null;
@@ -134,39 +135,4 @@ export async function startResponse(
 		detail: { surveyId, operationId, pledgeVersion, byLink: viewer.link !== null },
 	});
 	return "started";
-}
-
-/**
- * Keeps a step's answers in place of those it held, also of questions that its own answers now rule out: they may come
- * back. The same answers again change nothing.
- * @param stepKey a step that is asked now; answers of another step are refused like an unknown step.
- */
-export async function saveStep(
-	trx: Trx,
-	viewer: Grower,
-	place: AnswerPlace,
-	stepKey: string,
-	answers: Answer[],
-): Promise<"saved" | "unchanged" | "not_found" | "closed" | "not_started" | "step_not_found"> {
-	const answering = await lockAnswering(trx, viewer, place);
-	if (typeof answering === "string") return answering;
-	const { definition, plantings, response } = answering;
-	const asked = listAsked(definition, plantings, answering.answers).find(({ step }) => step.key === stepKey);
-	if (!asked) return "step_not_found";
-	const plantingId = asked.step.planting?.plantingId ?? null;
-	const ofScreen = new Set(asked.step.screen.questions.map(({ key }) => key));
-	if (answers.some((answer) => answer.plantingId !== plantingId || !ofScreen.has(answer.questionKey)))
-		return "step_not_found";
-
-	const replaced = new Set([...asked.questions.map(({ key }) => key), ...answers.map((answer) => answer.questionKey)]);
-	const held = answering.answers.filter(
-		(answer) => answer.plantingId === plantingId && replaced.has(answer.questionKey),
-	);
-	if (!(await replaceAnswers(trx, response.responseId, held, answers))) return "unchanged";
-	await trx
-		.updateTable("collect.response")
-		.set({ draft_version: response.draftVersion + 1 })
-		.where("response_id", "=", response.responseId)
-		.execute();
-	return "saved";
 }

@@ -13,6 +13,9 @@ import type { Step } from "./steps.ts";
 export type { StepValues };
 export const screenKind = "screen_kind";
 
+/** A cent of a percent either way, for shares like 33.33. */
+export const sumTolerance = 0.01 + 1e-9;
+
 export type ReadStep = { ok: true; answers: Answer[] } | { ok: false; answers: Answer[]; problems: Problem[] };
 
 /**
@@ -43,7 +46,7 @@ export function readStep(step: Step, questions: Question[], values: StepValues, 
 }
 
 /** Who fills the same crate with two answers of a screen says once what it holds. */
-function withSharedCrate(questions: Question[], values: StepValues): StepValues {
+export function withSharedCrate(questions: Question[], values: StepValues): StepValues {
 	const names = questions.map(({ key }) => `${key}_crate`);
 	const told = names.map((name) => postedText(values, name)).find((text) => text.trim() !== "");
 	if (told === undefined) return values;
@@ -81,7 +84,7 @@ function* sharesRead(
 	} else if (typed.length > 0) {
 		for (const { key } of shares) if (!typed.some((share) => share.key === key)) yield [key, nothingTaken];
 		const total = sumOf(typed.map(({ key }) => readings.get(key)));
-		if (total !== null && Math.abs(total - 100) > 0.01 + 1e-9)
+		if (total !== null && Math.abs(total - 100) > sumTolerance)
 			yield [first.key, { code: "sum_not_hundred_limit", detail: { total: Math.round(total * 100) / 100 } }];
 	}
 }

@@ -14,6 +14,8 @@ export type PlantingAsked = {
 /** One screen as a grower meets it. `key` is `planting-<plantingId>` for the planting table, else the screen's key. */
 export type Step = { key: string; screen: Screen; planting: PlantingAsked | null };
 export type AskedStep = { step: Step; questions: Question[] };
+/** A form for one operation, with what has been answered so far. */
+export type Asking = { definition: FormDefinition; plantings: PlantingAsked[]; answers: Answer[] };
 
 /**
  * The steps that are asked, given the answers so far. What a condition rules out is left out; where the answers do not
@@ -52,7 +54,7 @@ export function listAsked(definition: FormDefinition, plantings: PlantingAsked[]
 		value: (key) => (planting && value(key, planting.plantingId)) ?? value(key, null),
 		rows: plantings.map((row) => (key: string) => value(key, row.plantingId)),
 	});
-	return stepsOf(definition, plantings).flatMap((step) => {
+	return listAllSteps(definition, plantings).flatMap((step) => {
 		const asks = (condition: Condition | undefined) =>
 			condition === undefined || evaluate(condition, known(step.planting)) !== false;
 		const wholeScreen = asks(step.screen.condition);
@@ -67,7 +69,7 @@ export function listAsked(definition: FormDefinition, plantings: PlantingAsked[]
 }
 
 /** Every step of a form, whether asked now or not. */
-function stepsOf(definition: FormDefinition, plantings: PlantingAsked[]): Step[] {
+export function listAllSteps(definition: FormDefinition, plantings: PlantingAsked[]): Step[] {
 	const table = definition.screens.find((screen) => screen.perPlanting);
 	return definition.screens.flatMap((screen): Step[] => {
 		if (!screen.perPlanting) return [{ key: screen.key, screen, planting: null }];
@@ -75,6 +77,15 @@ function stepsOf(definition: FormDefinition, plantings: PlantingAsked[]): Step[]
 		const prefix = screen === table ? "planting" : screen.key;
 		return plantings.map((planting) => ({ key: `${prefix}-${planting.plantingId}`, screen, planting }));
 	});
+}
+
+/** A step with the questions that are asked of it now; with all of them where it is not asked. */
+export function findStep({ definition, plantings, answers }: Asking, stepKey: string): AskedStep | undefined {
+	const isThis = ({ key }: { key: string }) => key === stepKey;
+	const asked = listAsked(definition, plantings, answers).find(({ step }) => isThis(step));
+	if (asked) return asked;
+	const step = listAllSteps(definition, plantings).find(isThis);
+	return step && { step, questions: step.screen.questions };
 }
 
 /** Names the one answer that a question can have for a planting, or for the whole operation. */

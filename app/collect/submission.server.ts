@@ -7,12 +7,13 @@ import { queueJob } from "#app/jobs/queue.server.ts";
 import { writeFacts } from "#app/tally/facts.server.ts";
 import { findNewestSubmission, sameAnswers, type Submission } from "./answer-rows.server.ts";
 import type { Answer } from "./form.ts";
+import { isFinished } from "./progress.ts";
 import { type AnswerPlace, lockAnswering } from "./responses.server.ts";
-import { answersByPlace, keptAnswers, listAsked, placeOf } from "./steps.ts";
+import { keptAnswers, listAsked } from "./steps.ts";
 
 export type Submitted =
 	| { outcome: "submitted" | "unchanged"; receiptCode: string; version: number }
-	/** Steps that still lack an answer to a required question, in the order of the form. */
+	/** Steps that lack a required answer or whose answers do not fit together, in the order of the form. */
 	| { outcome: "unfinished"; stepKeys: string[] }
 	| "not_found"
 	| "closed"
@@ -37,7 +38,7 @@ export async function submitResponse(
 	const newest = await findNewestSubmission(trx, response.responseId);
 	if (newest && response.receiptCode !== null && sameAnswers(newest.answers, answers))
 		return { outcome: "unchanged", receiptCode: response.receiptCode, version: response.submittedVersion };
-	const stepKeys = stepsUnanswered(answering, answers);
+	const stepKeys = stepsUnfinished(answering);
 	if (stepKeys.length > 0) return { outcome: "unfinished", stepKeys };
 
 	const version = response.submittedVersion + 1;
@@ -63,12 +64,9 @@ export async function submitResponse(
 	return { outcome: "submitted", receiptCode, version };
 }
 
-function stepsUnanswered({ definition, plantings, answers: all }: Locked, kept: Answer[]): string[] {
-	const answered = answersByPlace(kept);
-	return listAsked(definition, plantings, all)
-		.filter(({ step, questions }) =>
-			questions.some(({ key, required }) => required && !answered.has(placeOf(key, step.planting?.plantingId ?? null))),
-		)
+function stepsUnfinished({ definition, plantings, answers }: Locked): string[] {
+	return listAsked(definition, plantings, answers)
+		.filter((asked) => !isFinished(asked, answers))
 		.map(({ step }) => step.key);
 }
 

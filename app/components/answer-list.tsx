@@ -68,7 +68,8 @@ const formatUnit: Record<Exclude<ShownUnit, "count">, Unit> = {
 	percent: "percent",
 };
 
-function AnswerText({ shown }: { shown: ShownAnswer }) {
+/** One answer in words, in the unit it was told in. */
+export function AnswerText({ shown }: { shown: ShownAnswer }) {
 	const { t, i18n } = useTranslation();
 	const format = useFormat();
 	switch (shown.kind) {

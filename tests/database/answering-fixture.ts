@@ -3,7 +3,8 @@ import type { Client } from "pg";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Grower } from "#app/auth/viewer.ts";
 import type { StepValues } from "#app/collect/posted.ts";
-import { type AnswerPlace, findAnswering, saveStep, startResponse } from "#app/collect/responses.server.ts";
+import { keepStep } from "#app/collect/keep-step.server.ts";
+import { type AnswerPlace, findAnswering, startResponse } from "#app/collect/responses.server.ts";
 import { readPostedStep } from "#app/collect/posted-step.ts";
 import { listSteps } from "#app/collect/steps.ts";
 import { submitResponse } from "#app/collect/submission.server.ts";
@@ -85,7 +86,7 @@ export async function stepKeysOf(grower: Grower, place: AnswerPlace): Promise<st
 	return listSteps(definition, plantings, answers).map(({ key }) => key);
 }
 
-/** Saves a step as its page does: what was typed is read, then kept. @returns what to mend, or what saving said. */
+/** Saves a step as its page does: what was typed is read, then kept. @returns what to mend, or what keeping said. */
 export async function typeStep(
 	grower: Grower,
 	place: AnswerPlace,
@@ -100,7 +101,8 @@ export async function typeStep(
 		const posted = readPostedStep(answering, stepKey, values, settings);
 		if (!posted) return "step_not_found" as const;
 		if (posted.problems.length > 0) return posted.problems.map(({ field, code }) => `${field}: ${code}`);
-		return saveStep(trx, grower, place, stepKey, posted.answers);
+		const kept = await keepStep(trx, grower, place, stepKey, posted.answers);
+		return typeof kept === "string" ? kept : kept.outcome;
 	});
 }
 

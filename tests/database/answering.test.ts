@@ -2,7 +2,8 @@ import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import type { Client } from "pg";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { findAnswering, saveStep, startResponse } from "#app/collect/responses.server.ts";
+import { keepStep } from "#app/collect/keep-step.server.ts";
+import { findAnswering, startResponse } from "#app/collect/responses.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
 import {
 	addPlanting,
@@ -258,7 +259,7 @@ describe("keeping a step", () => {
 		let second: ReturnType<typeof typeStep> | undefined;
 		await asGrower(grower, async (trx) => {
 			const light = { questionKey: "bud_set", plantingId: null, kind: "given", value: "light", given: null } as const;
-			expect(await saveStep(trx, grower, place, "next_year", [light])).toBe("saved");
+			expect(await keepStep(trx, grower, place, "next_year", [light])).toMatchObject({ outcome: "saved" });
 			second = typeStep(grower, place, step, pounds(40, 4000, 4000));
 			await new Promise((wait) => setTimeout(wait, 300));
 		});
@@ -288,7 +289,7 @@ describe("whose answers", () => {
 			const asStranger = <T>(work: Parameters<typeof asGrower<T>>[1]) => asGrower(stranger, work);
 			expect(await asStranger((trx) => findAnswering(trx, viewer, place))).toBeUndefined();
 			expect(await asStranger((trx) => startResponse(trx, viewer, place, agree))).toBe("not_found");
-			expect(await asStranger((trx) => saveStep(trx, viewer, place, step, []))).toBe("not_found");
+			expect(await asStranger((trx) => keepStep(trx, viewer, place, step, []))).toBe("not_found");
 		}
 		// And the other way round: a transaction that sees the place does not open it to one who has no right to it.
 		const seeing = await scopedTransaction({ kind: "network" }, (trx) => findAnswering(trx, stranger, place));
@@ -327,7 +328,7 @@ describe("whose answers", () => {
 		const theirs = other.plantingIds[0]!;
 		const save = (stepKey: string, plantingId: string | null = null) =>
 			asGrower(grower, (trx) =>
-				saveStep(trx, grower, place, stepKey, [
+				keepStep(trx, grower, place, stepKey, [
 					{ questionKey: "bearing_trees", plantingId, kind: "given", value: 1, given: { text: "1" } },
 				]),
 			);

@@ -3,8 +3,10 @@ import { useTranslation } from "react-i18next";
 import { data, Form, href, Link, redirect, useNavigation } from "react-router";
 import type { Route } from "./+types/screen";
 import { requireGrower } from "#app/auth/guard.server.ts";
-import { saveStep } from "#app/collect/responses.server.ts";
+import { listDifferences } from "#app/collect/answer-lines.ts";
+import { keepStep } from "#app/collect/keep-step.server.ts";
 import { readPostedStep } from "#app/collect/posted-step.ts";
+import { versionOf } from "#app/collect/step-change.ts";
 import { valuesOf } from "#app/collect/step-values.ts";
 import { listSteps, questionsAsked } from "#app/collect/steps.ts";
 import { Button } from "#app/components/button.tsx";
@@ -16,6 +18,7 @@ import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { getAnswering, todayIn } from "./parts/answering.server.ts";
+import { ChangedElsewhere } from "./parts/changed-elsewhere.tsx";
 import { labelOf, QuestionField } from "./parts/question-field.tsx";
 import { ScreenUnknown } from "./parts/unknown-boxes.tsx";
 import { readPosted } from "./parts/posted.server.ts";
@@ -33,6 +36,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	return {
 		step,
 		questions,
+		version: versionOf(answering.response.stepChanges, step.key),
 		values: valuesOf(step, questions, answers, { massUnit, crates, language: getLanguage(context) }),
 		number: at + 1,
 		of: steps.length,
@@ -42,7 +46,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const grower = requireGrower(context, params);
-	const values = await readPosted(request);
+	const { values, sent } = await readPosted(request);
 	const answering = await getAnswering(context, params);
 	const posted = readPostedStep(answering, params.screen, values, {
 		language: getLanguage(context),
@@ -51,13 +55,18 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	});
 	if (!posted) throw refusal("page_not_found");
 	const { step, questions, answers, problems } = posted;
-	if (problems.length > 0) return data({ values, questions, problems }, { status: 400 });
+	const shown = { values, questions, seen: sent?.seen };
+	if (problems.length > 0) return data({ ...shown, problems, elsewhere: null }, { status: 400 });
 
-	const outcome = await grower.transaction((trx) => saveStep(trx, grower.viewer, params, step.key, answers));
-	if (outcome === "closed") throw refusal("survey_closed");
-	if (outcome === "not_found") throw refusal("survey_not_found");
-	if (outcome === "step_not_found") throw refusal("page_not_found");
-	if (outcome === "not_started") return redirect(href("/answer/:surveyId/:operationId", params), 303);
+	const kept = await grower.transaction((trx) => keepStep(trx, grower.viewer, params, step.key, answers, { sent }));
+	if (kept === "closed") throw refusal("survey_closed");
+	if (kept === "not_found") throw refusal("survey_not_found");
+	if (kept === "step_not_found") throw refusal("page_not_found");
+	if (kept === "not_started") return redirect(href("/answer/:surveyId/:operationId", params), 303);
+	if (kept.outcome === "changed_elsewhere") {
+		const elsewhere = listDifferences(await getAnswering(context, params), step.key, answers);
+		return data({ ...shown, problems: [], seen: kept.version, elsewhere }, { status: 409 });
+	}
 	return redirect(await nextAddress(context, params, request), 303);
 }
 
@@ -81,6 +90,7 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 	const busy = useNavigation().state === "submitting";
 	const { step, number, of, previous } = loaderData;
 	const { questions, values } = actionData ?? loaderData;
+	const elsewhere = actionData?.elsewhere;
 	const title = useStepTitle()(step);
 	const help = step.screen.help && wordsIn(step.screen.help, i18n.language);
 	const shared = new Set(step.screen.sumToHundred ?? []);
@@ -102,6 +112,8 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 			/>
 			{/* A screen of its own: boxes of one step must not carry their text into the next. */}
 			<Form key={step.key} method="post" noValidate>
+				<input type="hidden" name="_seen" value={actionData?.seen ?? loaderData.version} />
+				{elsewhere && <ChangedElsewhere lines={elsewhere} />}
 				{questions.map((question) => (
 					<QuestionField
 						key={question.key}
@@ -114,7 +126,7 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 				))}
 				{shared.size > 0 && <ScreenUnknown values={values} />}
 				<div className="mt-8 flex flex-wrap items-center gap-4">
-					<Button busy={busy}>{t("common:button.continue")}</Button>
+					<Button busy={busy}>{t(elsewhere ? "elsewhere.mine" : "common:button.continue")}</Button>
 					<Link to={backAddress(params, previous)} className="inline-flex min-h-11 items-center">
 						{t("common:button.back")}
 					</Link>
