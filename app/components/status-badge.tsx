@@ -14,7 +14,7 @@ export function StatusBadge({ tone, children }: { tone: keyof typeof tones; chil
 	return (
 		<span
 			className={classes(
-				"inline-flex items-center gap-1.5 whitespace-nowrap rounded-plat border px-2 py-0.5 text-xs font-bold",
+				"inline-flex items-center gap-1.5 w-max max-w-full rounded-plat border px-2 py-0.5 text-xs font-bold",
 				look,
 			)}
 		>
