@@ -40,33 +40,27 @@ export type LoggedEvent = {
 /** The one place that reads the log. Search looks at who did it, to whom, and the address of a report. */
 function selectEvents(trx: Trx, _viewer: Coordinator, { q, show }: LogQuery) {
 	const pattern = `%${q.replace(/[\\%_]/g, String.raw`\$&`)}%`;
-	return (
-		trx
-			.selectFrom("log.event as e")
-			.leftJoin("auth.person as p", "p.person_id", "e.person_id")
-			// A subject is told by kind and id as text, whatever table it lies in.
-			.leftJoin("auth.access_request as r", (join) =>
-				join
-					.on("e.subject_kind", "=", "access_request")
-					.on(sql`r.access_request_id::text`, "=", sql.ref("e.subject_id")),
-			)
-			.leftJoin("auth.person as a", "a.person_id", "r.person_id")
-			.leftJoin("auth.person as g", (join) =>
-				join.on("e.subject_kind", "=", "person").on(sql`g.person_id::text`, "=", sql.ref("e.subject_id")),
-			)
-			.$if(show !== "all", (events) => events.where("e.action", "like", `${show}.%`))
-			.$if(q !== "", (events) =>
-				events.where((eb) =>
-					eb.or([
-						eb("p.display_name", "ilike", pattern),
-						eb("p.email", "ilike", pattern),
-						eb("a.display_name", "ilike", pattern),
-						eb("g.display_name", "ilike", pattern),
-						eb(sql`e.detail ->> 'slug'`, "ilike", pattern),
-					]),
-				),
-			)
-	);
+	// People are few and events many: who is meant is found first, and the log then goes by ids.
+	const meant = trx
+		.selectFrom("auth.person")
+		.where((eb) => eb.or([eb("display_name", "ilike", pattern), eb("email", "ilike", pattern)]));
+	const requests = trx
+		.selectFrom("auth.access_request")
+		.where("person_id", "in", meant.select("person_id"))
+		.select(sql<string>`access_request_id::text`.as("id"));
+	return trx
+		.selectFrom("log.event as e")
+		.$if(show !== "all", (events) => events.where("e.action", "like", `${show}.%`))
+		.$if(q !== "", (events) =>
+			events.where((eb) =>
+				eb.or([
+					eb("e.person_id", "in", meant.select("person_id")),
+					eb("e.subject_id", "in", meant.select(sql<string>`person_id::text`.as("id"))),
+					eb("e.subject_id", "in", requests),
+					eb(sql`e.detail ->> 'slug'`, "ilike", pattern),
+				]),
+			),
+		);
 }
 
 /** A page of what was done, newest first. */
@@ -76,6 +70,15 @@ export async function listEvents(trx: Trx, viewer: Coordinator, query: LogQuery)
 	const pageCount = Math.max(1, Math.ceil(total / pageSize));
 	const page = Math.min(query.page, pageCount);
 	const rows = await events
+		.leftJoin("auth.person as p", "p.person_id", "e.person_id")
+		// A subject is told by kind and id as text, whatever table it lies in.
+		.leftJoin("auth.access_request as r", (join) =>
+			join.on("e.subject_kind", "=", "access_request").on(sql`r.access_request_id::text`, "=", sql.ref("e.subject_id")),
+		)
+		.leftJoin("auth.person as a", "a.person_id", "r.person_id")
+		.leftJoin("auth.person as g", (join) =>
+			join.on("e.subject_kind", "=", "person").on(sql`g.person_id::text`, "=", sql.ref("e.subject_id")),
+		)
 		.leftJoin("collect.release_draft as d", (join) =>
 			join.on("e.subject_kind", "=", "release_draft").on(sql`d.release_draft_id::text`, "=", sql.ref("e.subject_id")),
 		)

@@ -59,6 +59,7 @@ test("the desk opens on what needs doing, and leads to the growers to ring and t
 	expect(await axeFindings(associate)).toEqual([]);
 
 	await associate.goto(`${stack.baseUrl}${survey}/responses?q=quail`);
+	expect(await associate.getByRole("link", { name: /^County/ }).getAttribute("href")).toContain("q=quail");
 	await associate.getByRole("link", { name: "Quail Bend <b>Orchard</b>" }).click();
 	await associate.getByRole("button", { name: "Send a new link" }).click();
 	expect(await axeFindings(associate)).toEqual([]);
