@@ -45,6 +45,6 @@ export function judgeChange(
  */
 export function afterWriting(newest: StepChange | undefined, sent: SentChange, changed: boolean): StepChange {
 	const before = newest ?? { version: 0, changeId: null };
-	if (!changed && sent.unsure.length === 0) return before;
+	if (!changed && sent.unsure.length === 0) return { ...before, changeId: sent.changeId };
 	return { version: before.version + 1, changeId: sent.changeId };
 }

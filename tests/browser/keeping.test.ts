@@ -100,9 +100,13 @@ test("whoever may not answer keeps nothing, and forged changes are refused", asy
 	expect((await mine.visitor.post(theirs.keep, typed("1"))).status).toBe(404);
 	expect((await httpVisitor(stack.baseUrl).post(mine.keep, typed("1"))).status).toBe(401);
 	expect((await mine.visitor.post(`${mine.address}/keep/causes_none`, typed("1"))).status).toBe(404);
-	const forgeries: Record<string, string>[] = [{ _seen: "-1" }, { _seen: "x" }, { _change: "<b>" }, { _language: "xx" }];
-	for (const forged of forgeries)
-		expect((await mine.visitor.post(mine.keep, typed("1", forged))).status).toBe(400);
+	const forgeries: Record<string, string>[] = [
+		{ _seen: "-1" },
+		{ _seen: "x" },
+		{ _change: "<b>" },
+		{ _language: "xx" },
+	];
+	for (const forged of forgeries) expect((await mine.visitor.post(mine.keep, typed("1", forged))).status).toBe(400);
 	expect((await mine.visitor.post(mine.keep, { harvested: "1" })).status).toBe(400);
 	expect((await mine.visitor.get(mine.keep)).status).toBeGreaterThanOrEqual(400);
 	const answers = "collect.answer join collect.response using (response_id) where survey_id = any($1)";
