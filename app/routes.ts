@@ -50,6 +50,7 @@ export default [
 					route("plantings", "routes/grower/plantings.tsx"),
 					route("plantings/new", "routes/grower/planting-new.tsx"),
 					route("plantings/:plantingId", "routes/grower/planting.tsx"),
+					route("place", "routes/grower/place.tsx"),
 				]),
 			]),
 		]),

@@ -266,6 +266,13 @@ export interface DirectoryOperation {
   updated_at: Generated<Timestamp>;
 }
 
+export interface DirectoryOperationPin {
+  latitude: number;
+  longitude: number;
+  operation_id: string;
+  set_at: Generated<Timestamp>;
+}
+
 export interface DirectoryOwner {
   name: string;
   owner_id: Generated<string>;
@@ -410,6 +417,7 @@ export interface DB {
   "directory.crop": DirectoryCrop;
   "directory.district": DirectoryDistrict;
   "directory.operation": DirectoryOperation;
+  "directory.operation_pin": DirectoryOperationPin;
   "directory.owner": DirectoryOwner;
   "directory.planting": DirectoryPlanting;
   "directory.state": DirectoryState;

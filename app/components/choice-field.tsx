@@ -3,7 +3,8 @@ import type { Problem } from "#app/lib/parse-form.ts";
 import { classes } from "./classes.ts";
 import { describedBy, FieldFrame, FieldHelp, fieldId, FieldProblem, inputClasses, LabelText } from "./field-frame.tsx";
 
-export type Option = { value: string; label: string; help?: ReactNode };
+/** `group` puts an option of a select under a heading with the others of that group, which stand next to it. */
+export type Option = { value: string; label: string; help?: ReactNode; group?: string };
 type ChoiceFieldProps = {
 	legend: string;
 	name: string;
@@ -38,14 +39,33 @@ function SelectField({ legend, name, options, defaultValue, help, noun, problem,
 				aria-invalid={problem ? true : undefined}
 				className={classes(inputClasses(problem), "mt-1.5 block")}
 			>
-				{options.map(({ value, label }) => (
-					<option key={value} value={value}>
-						{label}
-					</option>
-				))}
+				{groupsOf(options).map(({ group, of }) =>
+					group === undefined ? (
+						<SelectOptions key="" options={of} />
+					) : (
+						<optgroup key={group} label={group}>
+							<SelectOptions options={of} />
+						</optgroup>
+					),
+				)}
 			</select>
 		</FieldFrame>
 	);
+}
+
+function SelectOptions({ options }: { options: Option[] }) {
+	return options.map(({ value, label }) => (
+		<option key={value} value={value}>
+			{label}
+		</option>
+	));
+}
+
+function groupsOf(options: Option[]): { group: string | undefined; of: Option[] }[] {
+	return [...new Set(options.map(({ group }) => group))].map((group) => ({
+		group,
+		of: options.filter((option) => option.group === group),
+	}));
 }
 
 function OptionList({ legend, name, options, defaultValue, help, noun, problem, optional, kind }: ChoiceFieldProps) {

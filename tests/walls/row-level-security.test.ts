@@ -9,7 +9,13 @@ import { fillWithHolders, type Holder, type Holders } from "./row-owners.ts";
 
 type Write = "insert" | "update" | "delete";
 /** Whose row it is (the column that tells; a state beside it, where one is kept), and what the application may do to rows that its scope reaches. */
-type Guarded = { key: keyof Holder; state?: "state_fips"; desk: Write[]; grower: Write[] | "nothing" };
+type Guarded = {
+	key: keyof Holder;
+	state?: "state_fips";
+	desk: Write[];
+	grower: Write[] | "nothing";
+	growerOnly?: true;
+};
 
 const write: Write[] = ["insert", "update"];
 const all: Write[] = ["insert", "update", "delete"];
@@ -19,6 +25,8 @@ const guarded: Record<string, Guarded> = {
 	"directory.owner": { key: "owner_id", desk: write, grower: [] },
 	"directory.operation": { key: "operation_id", state: "state_fips", desk: write, grower: write },
 	"directory.planting": { key: "operation_id", desk: write, grower: write },
+	// Where an orchard lies is its grower's alone to read.
+	"directory.operation_pin": { key: "operation_id", desk: all, grower: all, growerOnly: true },
 	"collect.frame_operation": { key: "operation_id", state: "state_fips", desk: write, grower: write },
 	"collect.frame_crop": { key: "operation_id", desk: write, grower: write },
 	"collect.mailing": { key: "operation_id", desk: write, grower: write },
@@ -147,7 +155,7 @@ describe("the catalogue", () => {
 });
 
 describe.each(tables)("%s", (table) => {
-	const { desk, grower } = guarded[table]!;
+	const { desk, grower, growerOnly } = guarded[table]!;
 
 	test("is out of reach while no scope was ever set, and under the scope of nothing", async () => {
 		const fresh = connect(database.appUrl, { max: 1 });
@@ -159,16 +167,18 @@ describe.each(tables)("%s", (table) => {
 		expect(await attempts({ kind: "none" }, table, holders.iowa)).toEqual(outOfReach(table));
 	});
 
-	test("lets the network's own work reach every row", async () => {
+	const atWork = growerOnly ? outOfReach(table) : reachable(desk);
+
+	test(`lets the network's own work reach ${growerOnly ? "no" : "every"} row`, async () => {
 		for (const holder of Object.values(holders)) {
-			expect(await attempts({ kind: "network" }, table, holder)).toEqual(reachable(desk));
+			expect(await attempts({ kind: "network" }, table, holder)).toEqual(atWork);
 		}
 	});
 
-	test("lets a desk reach the rows of its states and no others", async () => {
+	test(`lets a desk reach ${growerOnly ? "no row, in its states or others" : "the rows of its states and no others"}`, async () => {
 		const iowa: Scope = { kind: "desk", stateFips: ["19"] };
-		expect(await attempts(iowa, table, holders.iowa)).toEqual(reachable(desk));
-		expect(await attempts(iowa, table, holders.neighbor)).toEqual(reachable(desk));
+		expect(await attempts(iowa, table, holders.iowa)).toEqual(atWork);
+		expect(await attempts(iowa, table, holders.neighbor)).toEqual(atWork);
 		expect(await attempts(iowa, table, holders.wisconsin)).toEqual(beyondTheDesk(table));
 		expect(await attempts({ kind: "desk", stateFips: [] }, table, holders.iowa)).toEqual(beyondTheDesk(table));
 	});
@@ -186,11 +196,11 @@ describe.each(tables)("%s", (table) => {
 test.each(tables.filter((table) => !ofTheNetwork(table)))(
 	"a row of %s cannot be handed to whom the scope does not reach",
 	async (table) => {
-		const { key, state } = guarded[table]!;
+		const { key, state, growerOnly } = guarded[table]!;
 		const hand = (scope: Scope, column: string, to: unknown) =>
 			attempt(scope, `update ${table} set ${column} = $2 where ${key} = $1`, [holders.iowa[key], to]);
 		const desk: Scope = { kind: "desk", stateFips: ["19"] };
-		expect(await hand(desk, state ?? key, state ? "55" : holders.wisconsin[key])).toBe(refused);
+		expect(await hand(desk, state ?? key, state ? "55" : holders.wisconsin[key])).toBe(growerOnly ? 0 : refused);
 		const grower: Scope = { kind: "grower", operationIds: [holders.iowa.operation_id] };
 		expect(await hand(grower, key, holders.neighbor[key])).toBe(refused);
 	},

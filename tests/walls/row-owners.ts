@@ -48,6 +48,7 @@ async function addHolder(owner: Client, surveyId: string, draftId: string, state
 		from directory.operation where operation_id = $2`,
 		[surveyId, operationId],
 	);
+	await owner.query("insert into directory.operation_pin values ($1, -91.5, 41.6)", [operationId]);
 	const ids = [surveyId, operationId];
 	await owner.query("insert into collect.frame_crop values ($1, $2, 'apple', 40)", ids);
 	await owner.query("insert into collect.mailing (survey_id, operation_id, kind) values ($1, $2, 'invitation')", ids);

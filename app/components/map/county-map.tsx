@@ -5,6 +5,7 @@ import { classes } from "#app/components/classes.ts";
 import type { Unit } from "#app/lib/format.ts";
 import { useCellWords } from "./cell-words.ts";
 import type { Direction } from "./live-map.client.ts";
+import { mapKey, ZoomButtons } from "./map-keys.tsx";
 import { StaticMap, type StaticMapProps } from "./static-map.tsx";
 import { useLiveMap } from "./use-live-map.ts";
 
@@ -20,7 +21,6 @@ type CountyMapProps = Omit<StaticMapProps, "selected"> & {
 	nameOf: (areaKey: string) => string;
 	onChoose: (areaKey: string | null) => void;
 };
-const arrows: Record<string, Direction> = { ArrowUp: "up", ArrowDown: "down", ArrowLeft: "left", ArrowRight: "right" };
 
 /** The map of a page: drawn by the server at first, live once it can be; by pointer, finger and keyboard. */
 export function CountyMap(props: CountyMapProps) {
@@ -55,7 +55,7 @@ export function CountyMap(props: CountyMapProps) {
 			drawn.cells.find((cell) => cell.areaKey === areaKey),
 		);
 	const onKeyDown = (event: KeyboardEvent) => {
-		const step = keyOf(event);
+		const step = mapKey(event.key);
 		if (!step || !live || event.ctrlKey || event.metaKey || event.altKey) return;
 		event.preventDefault();
 		if (step === "leave") {
@@ -129,30 +129,6 @@ function walk(
 		if (areaOf(here) !== null && (start === null || areaOf(here) !== areaOf(start))) return here;
 	}
 	return here;
-}
-
-function keyOf(event: KeyboardEvent): Direction | "in" | "out" | "leave" | undefined {
-	if (event.key === "Escape") return "leave";
-	if (event.key === "+" || event.key === "=") return "in";
-	if (event.key === "-") return "out";
-	return arrows[event.key];
-}
-
-function ZoomButtons({ onZoom, onReset }: { onZoom: (steps: number) => void; onReset: () => void }) {
-	const { t } = useTranslation("public");
-	return (
-		<div className="no-print absolute right-3 top-3 grid gap-2">
-			<Button type="button" kind="secondary" aria-label={t("map.live.zoomIn")} onClick={() => onZoom(1)}>
-				+
-			</Button>
-			<Button type="button" kind="secondary" aria-label={t("map.live.zoomOut")} onClick={() => onZoom(-1)}>
-				−
-			</Button>
-			<Button type="button" kind="secondary" aria-label={t("map.live.reset")} onClick={onReset}>
-				⤢
-			</Button>
-		</div>
-	);
 }
 
 /** Beside the pointer and never under it. The same words stand in the table, so a screen reader need not hear them twice. */

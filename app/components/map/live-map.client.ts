@@ -1,25 +1,12 @@
-import "maplibre-gl/dist/maplibre-gl.css";
-import {
-	type ExpressionSpecification,
-	type GeoJSONSource,
-	Map as LibraryMap,
-	type MapMouseEvent,
-	setWorkerUrl,
-} from "maplibre-gl";
-import workerUrl from "maplibre-gl/dist/maplibre-gl-worker.mjs?url";
+import type { ExpressionSpecification, GeoJSONSource, Map as LibraryMap, MapMouseEvent } from "maplibre-gl";
 import { colorsOfPage, dotImage, hatchImage, type MapColors } from "./map-colors.client.ts";
 import type { FiguresAnswer, GeometryAnswer, Hue } from "./map-data.ts";
 import { boundsOf, middlesOf, nextCounty, ringsOf } from "./map-places.ts";
-import { mapStyle, paintedBy } from "./map-style.ts";
+import { paintedBy } from "./map-style.ts";
+import { openMap, type OpenMapOptions } from "./open-map.client.ts";
 import { outerEdge } from "./outer-edge.ts";
 
-setWorkerUrl(workerUrl);
-
-export type LiveMapOptions = {
-	container: HTMLElement;
-	geometry: GeometryAnswer;
-	/** The map library's own sentences, in the reader's language. */
-	words: Record<string, string>;
+export type LiveMapOptions = OpenMapOptions & {
 	onPoint: (fips: string | null, at: { x: number; y: number } | null) => void;
 	onChoose: (fips: string) => void;
 };
@@ -38,34 +25,9 @@ export type Direction = "up" | "down" | "left" | "right";
 
 /** Draws the map into its container. Resolves when the first picture stands. @throws where WebGL is missing. */
 export async function createLiveMap(options: LiveMapOptions): Promise<LiveMap> {
-	const { container, geometry, words } = options;
-	const bounds = boundsOf(geometry);
-	const map = new LibraryMap({
-		container,
-		style: mapStyle(geometry, colorsOfPage("loss")),
-		bounds,
-		fitBoundsOptions: { padding: 16 },
-		attributionControl: false,
-		dragRotate: false,
-		pitchWithRotate: false,
-		touchPitch: false,
-		// Arrow keys walk from county to county instead; the page's own buttons zoom.
-		keyboard: false,
-		// A finger or wheel that means to scroll the page is not caught by the map.
-		cooperativeGestures: true,
-		renderWorldCopies: false,
-		maxZoom: 11,
-		locale: words,
-		fadeDuration: 0,
-	});
-	map.touchZoomRotate.disableRotation();
-	map.getCanvas().tabIndex = -1;
-	await new Promise<void>((resolve, reject) => {
-		map.once("load", () => resolve());
-		map.once("error", ({ error }) => reject(error));
-	});
+	const map = await openMap(options);
 	listen(map, options);
-	return controls(map, geometry, bounds);
+	return controls(map, options.geometry, boundsOf(options.geometry));
 }
 
 function listen(map: LibraryMap, { onPoint, onChoose }: LiveMapOptions) {

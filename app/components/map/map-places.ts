@@ -14,15 +14,32 @@ function positions(nested: unknown): [number, number][] {
 	return nested.flatMap(positions);
 }
 
+/** Every ring in nested coordinates. */
+function ringsIn(nested: unknown): [number, number][][] {
+	if (!Array.isArray(nested)) return [];
+	return typeof nested[0]?.[0] === "number" ? [nested as [number, number][]] : nested.flatMap(ringsIn);
+}
+
 /** Every ring of the named counties. */
 export function ringsOf(geometry: Pick<GeometryAnswer, "counties">, fips: ReadonlySet<string>): [number, number][][] {
-	const rings = (nested: unknown): [number, number][][] => {
-		if (!Array.isArray(nested)) return [];
-		return typeof nested[0]?.[0] === "number" ? [nested as [number, number][]] : nested.flatMap(rings);
-	};
 	return featuresOf(geometry)
 		.filter(({ properties }) => fips.has(properties.fips))
-		.flatMap(({ geometry: { coordinates } }) => rings(coordinates));
+		.flatMap(({ geometry: { coordinates } }) => ringsIn(coordinates));
+}
+
+/** The county whose outline goes around a place, as the map draws it; null where none does. */
+export function countyAt(geometry: Pick<GeometryAnswer, "counties">, [x, y]: [number, number]): string | null {
+	const around = featuresOf(geometry).find(({ geometry: { coordinates } }) => {
+		// A hole's ring counts too: what lies in the hole is gone around twice, and so not at all.
+		const crossed = ringsIn(coordinates).flatMap((ring) =>
+			ring.filter((from, index) => {
+				const to = ring[(index + 1) % ring.length] ?? from;
+				return from[1] > y !== to[1] > y && x < from[0] + ((y - from[1]) / (to[1] - from[1])) * (to[0] - from[0]);
+			}),
+		);
+		return crossed.length % 2 === 1;
+	});
+	return around?.properties.fips ?? null;
 }
 
 function boxOf(points: [number, number][]): Box {

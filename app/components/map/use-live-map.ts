@@ -91,14 +91,14 @@ async function bringUp(countiesAddress: string, options: BringUp, isGone: () => 
 	return undefined;
 }
 
-async function fetchJson(address: string, how?: RequestInit): Promise<unknown> {
+export async function fetchJson(address: string, how?: RequestInit): Promise<unknown> {
 	const response = await fetch(address, how);
 	if (!response.ok) throw new Error(`${address} answered ${response.status}`);
 	return response.json();
 }
 
 /** The sentences that the map library says itself. */
-function useMapWords(): Record<string, string> {
+export function useMapWords(): Record<string, string> {
 	const { t } = useTranslation("public");
 	return {
 		"Map.Title": t("map.live.title"),

@@ -130,7 +130,7 @@ function Directory({ operation }: { operation: Operation }) {
 				]}
 			/>
 			<ul className="no-print mt-3">
-				{(["plantings"] as const).map((page) => (
+				{(["plantings", "place"] as const).map((page) => (
 					<li key={page}>
 						<Link
 							to={href(`/orchard/:operationId/${page}`, { operationId })}

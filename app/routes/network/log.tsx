@@ -80,7 +80,7 @@ function About({ event }: { event: LoggedEvent }) {
 	const { about, person, survey, stateFips, told, action } = event;
 	const state = stateFips && t(`common:state.${stateFips}`);
 	const role = told.role && t(`common:role.${told.role}`);
-	const ofGrower = action.startsWith("response.") || action === "survey.link_replaced";
+	const ofGrower = /^(response|operation)\./.test(action) || action === "survey.link_replaced";
 	const lines = [
 		about !== person?.name && about,
 		role && (state ? t("people.roleIn", { role, state }) : role),
