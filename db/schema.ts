@@ -72,6 +72,7 @@ export interface AuthSession {
 export interface CollectAnswer {
   answer_id: Generated<string>;
   answered_at: Generated<Timestamp>;
+  confirmed: Generated<Json>;
   given: Json | null;
   kind: string;
   planting_id: string | null;

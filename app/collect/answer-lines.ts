@@ -61,7 +61,8 @@ export function listDifferences(
 	});
 }
 
-function shownAs(question: Question, answer: Answer | undefined, planting: PlantingAsked | null): ShownAnswer {
+/** One answer as it is told, in the unit in which it was given. */
+export function shownAs(question: Question, answer: Answer | undefined, planting: PlantingAsked | null): ShownAnswer {
 	if (answer === undefined) return { kind: "none" };
 	if (answer.kind !== "given") return { kind: answer.kind };
 	const { value } = answer;

@@ -1,7 +1,7 @@
 import { isDeepStrictEqual } from "node:util";
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
-import type { Answer } from "./form.ts";
+import type { Answer, Confirmation } from "./form.ts";
 import { answersByPlace, placeOf, type PlantingAsked } from "./steps.ts";
 
 /** What was sent in once: the answers that were kept, and which plantings they are about. Never changed afterwards, but it can be withdrawn. */
@@ -10,7 +10,7 @@ export type Submission = { plantings: { plantingId: string; cropKey: string }[];
 export async function listAnswers(trx: Trx, responseId: string): Promise<Answer[]> {
 	const rows = await trx
 		.selectFrom("collect.answer")
-		.select(["question_key", "planting_id", "kind", "value", "given"])
+		.select(["question_key", "planting_id", "kind", "value", "given", "confirmed"])
 		.where("response_id", "=", responseId)
 		.orderBy("question_key")
 		.orderBy("planting_id")
@@ -21,7 +21,12 @@ export async function listAnswers(trx: Trx, responseId: string): Promise<Answer[
 		kind: row.kind as Answer["kind"],
 		value: row.value as Answer["value"],
 		given: row.given as Answer["given"],
+		...(hasAny(row.confirmed) && { confirmed: row.confirmed }),
 	}));
+}
+
+function hasAny(confirmed: unknown): confirmed is Confirmation[] {
+	return Array.isArray(confirmed) && confirmed.length > 0;
 }
 
 /**
@@ -56,6 +61,7 @@ export async function replaceAnswers(trx: Trx, responseId: string, held: Answer[
 					kind: answer.kind,
 					value: answer.value === null ? null : JSON.stringify(answer.value),
 					given: answer.given === null ? null : JSON.stringify(answer.given),
+					confirmed: JSON.stringify(answer.confirmed ?? []),
 				})),
 			)
 			.execute();

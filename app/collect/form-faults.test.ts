@@ -13,7 +13,13 @@ const choice = (key: string, condition?: Condition): Question => ({
 	options: [option("yes"), option("no")],
 	condition,
 });
-const trees = (key: string): Question => ({ ...base, key, type: "number", unitFamily: "trees" });
+const trees = (key: string, softMax?: number): Question => ({
+	...base,
+	key,
+	type: "number",
+	unitFamily: "trees",
+	limits: { softMax },
+});
 const percent = (key: string): Question => ({ ...base, key, type: "percent" });
 const day = (key: string, notBefore?: string): Question => ({ ...base, key, type: "date", notBefore });
 const screen = (key: string, questions: Question[], more: Partial<Screen> = {}): Screen => ({
@@ -174,6 +180,51 @@ describe("sums and days", () => {
 			'"d" comes after "c", which is no earlier date of its screen',
 		]);
 	});
+});
+
+const check = (key: string, when: Condition, question: string) => ({
+	key,
+	kind: "soft" as const,
+	when,
+	question,
+	message: words,
+});
+const late = (question: string): Condition => ({ compare: "<", question, to: { question: "felled", times: 2 } });
+const checked = (...checks: ReturnType<typeof check>[]) => [
+	screen("table", [trees("planted"), trees("felled")], { perPlanting: true, checks }),
+	screen("after", [day("seen_on"), trees("left", 9)]),
+];
+
+describe("checks", () => {
+	test.each<[string, Screen[], string[]]>([
+		["of one screen", checked(check("few", late("planted"), "planted")), []],
+		[
+			"told twice",
+			checked(check("few", is("planted", 1), "planted"), check("few", late("felled"), "felled")),
+			['two things are check "few"'],
+		],
+		[
+			"named as an expected range",
+			checked(check("left_soft_max", is("planted", 1), "planted")),
+			['two things are check "left_soft_max"'],
+		],
+		[
+			"on a later screen",
+			checked(check("few", { all: [is("planted", 1), is("left", 1)] }, "planted")),
+			['check "few" waits for "left", which is asked later'],
+		],
+		["on no question", checked(check("few", late("sold"), "felled")), ['check "few" names no question "sold"']],
+		[
+			"beside a question that they do not speak of",
+			checked(check("few", is("planted", 1), "felled")),
+			['check "few" stands beside "felled", which it does not speak of'],
+		],
+		[
+			"beside a question of another screen",
+			[...checked(), screen("last", [choice("why")], { checks: [check("few", is("left", 1), "left")] })],
+			['check "few" stands beside "left", which it does not speak of'],
+		],
+	])("%s", (_kind, screens, messages) => expect(faults(screens)).toEqual(messages));
 });
 
 describe("measures", () => {

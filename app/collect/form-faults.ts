@@ -1,4 +1,5 @@
-import { comparisonsIn, questionsOf } from "#app/lib/condition.ts";
+import { comparisonsIn, questionsIn, questionsOf } from "#app/lib/condition.ts";
+import { checksOf } from "./checks.ts";
 import { conditionFaults, type Fault, isNumber, type Placed } from "./condition-faults.ts";
 import type { FormDefinition, Quantity, Screen } from "./form.ts";
 
@@ -36,6 +37,7 @@ function placeQuestions(screens: Screen[]): Placed[] {
 function* keyFaults(form: Form, placed: Placed[]): Generator<Fault> {
 	yield* repeated(form.screens, "screen", ["screens"]);
 	yield* repeated(form.measures, "measure", ["measures"]);
+	yield* repeated(form.screens.flatMap(checksOf), "check", ["screens"]);
 	const taken = new Set(["screen_kind", "confirm"]);
 	for (const { question, path } of placed) {
 		if (taken.has(question.key))
@@ -57,6 +59,7 @@ function* screenFaults(screen: Screen, path: (string | number)[], byKey: Map<str
 	const first = byKey.get(screen.questions[0]?.key ?? "")?.at ?? 0;
 	const asked = { what: `the condition of screen "${screen.key}"`, before: first, perPlanting: screen.perPlanting };
 	if (screen.condition) yield* conditionFaults(screen.condition, asked, path, byKey);
+	yield* checkFaults(screen, first, path, byKey);
 	const ofScreen = (key: string) => screen.questions.find((question) => question.key === key);
 	for (const key of screen.sumToHundred ?? []) {
 		if (ofScreen(key)?.type !== "percent")
@@ -70,6 +73,23 @@ function* screenFaults(screen: Screen, path: (string | number)[], byKey: Map<str
 				path: [...path, "questions", index, "notBefore"],
 				message: `"${question.key}" comes after "${question.notBefore}", which is no earlier date of its screen`,
 			};
+	}
+}
+
+function* checkFaults(
+	screen: Screen,
+	first: number,
+	path: (string | number)[],
+	byKey: Map<string, Placed>,
+): Generator<Fault> {
+	for (const [index, { key, when, question }] of (screen.checks ?? []).entries()) {
+		const at = [...path, "checks", index];
+		const before = first + screen.questions.length;
+		const asked = { what: `check "${key}"`, before, perPlanting: screen.perPlanting };
+		yield* conditionFaults(when, asked, at, byKey);
+		// A confirmation is kept with the answer, so there must be one whenever the check is raised.
+		if (!questionsIn(when).includes(question) || !screen.questions.some((one) => one.key === question))
+			yield { path: at, message: `check "${key}" stands beside "${question}", which it does not speak of` };
 	}
 }
 

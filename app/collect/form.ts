@@ -1,6 +1,6 @@
 import { z } from "zod";
 import { Words } from "#app/lib/words.ts";
-import type { Condition as ConditionShape } from "#app/lib/condition.ts";
+import type { Condition as ConditionShape, ConditionValue } from "#app/lib/condition.ts";
 import { faultsOf } from "./form-faults.ts";
 
 export { Words };
@@ -81,6 +81,18 @@ export const Question = z.discriminatedUnion("type", [
 ]);
 export type Question = z.infer<typeof Question>;
 
+/** A rule on answers, beside one question. A hard one must be met; a soft one asks once whether the answers are right. */
+const Check = z.object({
+	key: Key,
+	kind: z.enum(["hard", "soft"]),
+	/** True where the answers are odd; what is not known raises nothing. */
+	when: Condition,
+	/** A question of the screen that `when` speaks of. */
+	question: Key,
+	message: Words,
+});
+export type Check = z.infer<typeof Check>;
+
 /** One screen of the survey: either questions asked once, or the planting table, which takes one screen a planting. */
 export const Screen = z.object({
 	key: Key,
@@ -91,6 +103,7 @@ export const Screen = z.object({
 	questions: z.array(Question).min(1),
 	/** Percent questions of this screen that must add up to a hundred. */
 	sumToHundred: z.array(Key).optional(),
+	checks: z.array(Check).optional(),
 	condition: Condition.optional(),
 });
 export type Screen = z.infer<typeof Screen>;
@@ -143,6 +156,9 @@ export const FormDefinition = z
 	});
 export type FormDefinition = z.infer<typeof FormDefinition>;
 
+/** A check that was confirmed and the values that it asked about: what changes is asked about again. */
+export type Confirmation = { check: string; values: (ConditionValue | null | (ConditionValue | null)[])[] };
+
 /**
  * One answer as stored. `value` is canonical (pounds, acres, degrees Fahrenheit, feet, plants, percent, ISO date, option
  * key, text); `given` keeps what was typed and its unit, with the weight of a crate where that is the unit. Don't know and
@@ -154,4 +170,6 @@ export type Answer = {
 	kind: "given" | "dont_know" | "refused";
 	value: number | string | string[] | null;
 	given: { text: string; unit?: string; crateLb?: number } | null;
+	/** Soft checks that the grower confirmed, left out where there is none. */
+	confirmed?: Confirmation[];
 };

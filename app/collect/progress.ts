@@ -1,15 +1,17 @@
+import { listOpenChecks } from "./checks.ts";
 import type { Answer, FormDefinition } from "./form.ts";
 import { sumTolerance } from "./step-fields.ts";
 import { type AskedStep, answersByPlace, listAsked, placeOf, type PlantingAsked, type Step } from "./steps.ts";
 
-/** Where to go on: the first step without any answer, or with one that is not finished. @returns undefined when there is none. */
+/** Where to go on: the first step without any answer, or with one to finish or to look at again, if there is any. */
 export function findOpenStep(
 	definition: FormDefinition,
 	plantings: PlantingAsked[],
 	answers: Answer[],
 ): Step | undefined {
+	const toCheck = new Set(listOpenChecks({ definition, plantings, answers }).map(({ step }) => step.key));
 	return listAsked(definition, plantings, answers).find(
-		(asked) => answersOf(asked, answers).length === 0 || !isFinished(asked, answers),
+		(asked) => answersOf(asked, answers).length === 0 || !isFinished(asked, answers) || toCheck.has(asked.step.key),
 	)?.step;
 }
 

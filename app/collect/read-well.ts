@@ -1,3 +1,4 @@
+import { withConfirmations } from "./checks.ts";
 import type { Answer } from "./form.ts";
 import { readPostedStep } from "./posted-step.ts";
 import { postedText, type StepValues } from "./posted.ts";
@@ -22,7 +23,9 @@ export function readWell(
 	const whole = readPostedStep(asking, stepKey, values, settings);
 	if (whole?.problems.length === 0) return { answers: whole.answers, unread: [] };
 	const asked = whole ?? findStep(asking, stepKey);
-	return asked && readEach(asked, values, settings);
+	if (!asked) return undefined;
+	const { answers, unread } = readEach(asked, values, settings);
+	return { answers: withConfirmations(asked.step, asking, answers), unread };
 }
 
 function readEach({ step, questions }: AskedStep, typed: StepValues, settings: ReadSettings): ReadWell {

@@ -6,6 +6,7 @@ import type { Grower } from "#app/auth/viewer.ts";
 import { queueJob } from "#app/jobs/queue.server.ts";
 import { writeFacts } from "#app/tally/facts.server.ts";
 import { findNewestSubmission, sameAnswers, type Submission } from "./answer-rows.server.ts";
+import { listOpenChecks } from "./checks.ts";
 import type { Answer } from "./form.ts";
 import { isFinished } from "./progress.ts";
 import { type AnswerPlace, lockAnswering } from "./responses.server.ts";
@@ -15,6 +16,8 @@ export type Submitted =
 	| { outcome: "submitted" | "unchanged"; receiptCode: string; version: number }
 	/** Steps that lack a required answer or whose answers do not fit together, in the order of the form. */
 	| { outcome: "unfinished"; stepKeys: string[] }
+	/** Steps with answers that break a check, or that a check asks about and nobody has confirmed. */
+	| { outcome: "to_check"; stepKeys: string[] }
 	| "not_found"
 	| "closed"
 	| "not_started";
@@ -40,6 +43,8 @@ export async function submitResponse(
 		return { outcome: "unchanged", receiptCode: response.receiptCode, version: response.submittedVersion };
 	const stepKeys = stepsUnfinished(answering);
 	if (stepKeys.length > 0) return { outcome: "unfinished", stepKeys };
+	const toCheck = new Set(listOpenChecks(answering).map(({ step }) => step.key));
+	if (toCheck.size > 0) return { outcome: "to_check", stepKeys: [...toCheck] };
 
 	const version = response.submittedVersion + 1;
 	const receiptCode = response.receiptCode ?? newReceiptCode();

@@ -1,13 +1,15 @@
 import { useTranslation } from "react-i18next";
+import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { decimalsOf } from "#app/lib/format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 
 /** A problem in the words of its field's label: alike beside the field and in the summary. */
 export function useProblemText() {
-	const { t } = useTranslation();
+	const { t, i18n } = useTranslation();
 	const format = useFormat();
 	return (problem: Problem, label: string): string => {
+		if (problem.words) return wordsIn(problem.words, i18n.language);
 		// A question makes no noun: "Enter how many did you pick?" reads wrong.
 		const noun = /[?¿]/.test(label) ? t("problem.your_answer") : label.replace(/[:.]\s*$/, "");
 		const detail = Object.entries(problem.detail ?? {}).map(([key, value]) => [

@@ -1,8 +1,9 @@
 import { parseWithZod } from "@conform-to/zod/v4";
 import type { z } from "zod";
+import type { Words } from "./words.ts";
 
-/** One thing to mend: the field's name and a code whose words are `common:problem.<code>`. */
-export type Problem = { field: string; code: string; detail?: Record<string, string | number> };
+/** One thing to mend: the field's name and a code whose words are `common:problem.<code>`, unless it brings its own. */
+export type Problem = { field: string; code: string; detail?: Record<string, string | number>; words?: Words };
 export type FormValues = Record<string, unknown>;
 export type ParsedForm<T> =
 	{ ok: true; value: T; values: FormValues } | { ok: false; values: FormValues; problems: Problem[] };

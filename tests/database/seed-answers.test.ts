@@ -2,6 +2,7 @@ import { expect, test } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import { listAnswers, listPlantingsAsked, type Submission } from "#app/collect/answer-rows.server.ts";
 import { FormDefinition } from "#app/collect/form.ts";
+import { listOpenChecks } from "#app/collect/checks.ts";
 import { readStep } from "#app/collect/step-fields.ts";
 import { valuesOf } from "#app/collect/step-values.ts";
 import { answersByPlace, keptAnswers, listAsked } from "#app/collect/steps.ts";
@@ -116,6 +117,7 @@ test("the form's own pages would have stored the same answers", async () => {
 			const held = await listAnswers(trx, response_id);
 			return { answers: held, plantings: await listPlantingsAsked(trx, place, held) };
 		});
+		expect(listOpenChecks({ definition: row.definition, plantings, answers })).toEqual([]);
 		const settings = { massUnit: row.unit, language: row.language, season: row.season, today: row.day };
 		const reread = listAsked(row.definition, plantings, answers).flatMap(({ step, questions }) => {
 			const read = readStep(step, questions, valuesOf(step, questions, answers, settings), settings);

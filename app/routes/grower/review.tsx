@@ -37,7 +37,7 @@ export async function action({ context, params }: Route.ActionArgs) {
 	if (outcome === "not_found") throw refusal("survey_not_found");
 	if (outcome === "closed") throw refusal("survey_closed");
 	if (outcome === "not_started") return redirect(href("/answer/:surveyId/:operationId", params), 303);
-	if (outcome.outcome === "unfinished") return data({ unfinished: outcome.stepKeys }, { status: 400 });
+	if (outcome.outcome === "unfinished" || outcome.outcome === "to_check") return data(outcome, { status: 400 });
 	return redirect(href("/answer/:surveyId/:operationId/receipt", params), 303);
 }
 
@@ -50,7 +50,7 @@ export default function Review({ loaderData, actionData, params }: Route.Compone
 		`${href("/answer/:surveyId/:operationId/ask/:screen", { ...params, screen })}?review`;
 	return (
 		<Page title={t("review.title")} lead={t("review.lead")}>
-			{actionData && <Unfinished {...loaderData} unfinished={actionData.unfinished} addressOf={askAddress} />}
+			{actionData && <Unfinished {...loaderData} {...actionData} addressOf={askAddress} />}
 			{sent && !changed && <Notice tone="info">{t("review.alreadySent")}</Notice>}
 			{sent && changed && <Notice tone="attention">{t("review.changedNotSent")}</Notice>}
 			<AnswerList groups={groups} editHref={askAddress} />
@@ -63,20 +63,21 @@ export default function Review({ loaderData, actionData, params }: Route.Compone
 }
 
 type UnfinishedProps = Pick<Route.ComponentProps["loaderData"], "steps"> & {
-	unfinished: string[];
+	outcome: "unfinished" | "to_check";
+	stepKeys: string[];
 	addressOf: (screen: string) => string;
 };
 
-/** What is still missing, with a way to each; answers that are there stay. */
-function Unfinished({ steps, unfinished, addressOf }: UnfinishedProps) {
+/** What is still missing or odd, with a way to each; answers that are there stay. */
+function Unfinished({ steps, outcome, stepKeys, addressOf }: UnfinishedProps) {
 	const { t } = useTranslation("grower");
 	const titleOf = useStepTitle();
 	return (
 		<div role="alert">
-			<Notice tone="caution" title={t("review.unfinished")}>
+			<Notice tone="caution" title={t(`review.${outcome}`)}>
 				<ul className="list-none space-y-1">
 					{steps
-						.filter(({ key }) => unfinished.includes(key))
+						.filter(({ key }) => stepKeys.includes(key))
 						.map((step) => (
 							<li key={step.key}>
 								<Link to={addressOf(step.key)} className="inline-flex min-h-11 items-center">

@@ -4,8 +4,10 @@ import { data, Form, href, Link, redirect, useNavigation } from "react-router";
 import type { Route } from "./+types/screen";
 import { requireGrower } from "#app/auth/guard.server.ts";
 import { listDifferences } from "#app/collect/answer-lines.ts";
+import { listOpenChecks } from "#app/collect/checks.ts";
+import { listChecksToAsk } from "#app/collect/checks-to-ask.ts";
 import { keepStep } from "#app/collect/keep-step.server.ts";
-import { readPostedStep } from "#app/collect/posted-step.ts";
+import { problemOf, readPostedStep } from "#app/collect/posted-step.ts";
 import { versionOf } from "#app/collect/step-change.ts";
 import { valuesOf } from "#app/collect/step-values.ts";
 import { listSteps, questionsAsked } from "#app/collect/steps.ts";
@@ -19,6 +21,7 @@ import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { getAnswering, todayIn } from "./parts/answering.server.ts";
 import { ChangedElsewhere } from "./parts/changed-elsewhere.tsx";
+import { CheckNotice } from "./parts/check-notice.tsx";
 import { labelOf, QuestionField } from "./parts/question-field.tsx";
 import { ScreenUnknown } from "./parts/unknown-boxes.tsx";
 import { readPosted } from "./parts/posted.server.ts";
@@ -37,6 +40,10 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		step,
 		questions,
 		version: versionOf(answering.response.stepChanges, step.key),
+		checks: listChecksToAsk(answering, step.key),
+		problems: listOpenChecks(answering)
+			.filter((check) => check.kind === "hard" && check.step.key === step.key)
+			.map(problemOf),
 		values: valuesOf(step, questions, answers, { massUnit, crates, language: getLanguage(context) }),
 		number: at + 1,
 		of: steps.length,
@@ -70,15 +77,19 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	return redirect(await nextAddress(context, params, request), 303);
 }
 
-/** The next step given what was just answered; from the review back to it. */
+/** The same step while its answers are to be confirmed, else the next one, or the review where somebody came from there. */
 async function nextAddress(
 	context: Route.ActionArgs["context"],
 	params: Route.ActionArgs["params"],
 	request: Request,
 ): Promise<string> {
+	const { search, searchParams } = new URL(request.url);
+	const answering = await getAnswering(context, params);
+	const again = href("/answer/:surveyId/:operationId/ask/:screen", params) + search;
+	if (listChecksToAsk(answering, params.screen).length > 0) return again;
 	const review = href("/answer/:surveyId/:operationId/review", params);
-	if (new URL(request.url).searchParams.has("review")) return review;
-	const { definition, plantings, answers } = await getAnswering(context, params);
+	if (searchParams.has("review")) return review;
+	const { definition, plantings, answers } = answering;
 	const steps = listSteps(definition, plantings, answers);
 	const next = steps[steps.findIndex(({ key }) => key === params.screen) + 1];
 	return next ? href("/answer/:surveyId/:operationId/ask/:screen", { ...params, screen: next.key }) : review;
@@ -89,7 +100,7 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 	const format = useFormat();
 	const busy = useNavigation().state === "submitting";
 	const { step, number, of, previous } = loaderData;
-	const { questions, values } = actionData ?? loaderData;
+	const { questions, values, problems } = actionData ?? loaderData;
 	const elsewhere = actionData?.elsewhere;
 	const title = useStepTitle()(step);
 	const help = step.screen.help && wordsIn(step.screen.help, i18n.language);
@@ -102,7 +113,7 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 				<span>{t("screen.progress", { number: format.number(number), of: format.number(of) })}</span>
 			</div>
 			<ErrorSummary
-				problems={actionData?.problems}
+				problems={problems}
 				labels={Object.fromEntries(
 					questions.flatMap((question) => [
 						[question.key, labelOf(question, i18n.language)],
@@ -114,6 +125,7 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 			<Form key={step.key} method="post" noValidate>
 				<input type="hidden" name="_seen" value={actionData?.seen ?? loaderData.version} />
 				{elsewhere && <ChangedElsewhere lines={elsewhere} />}
+				{!actionData && <CheckNotice checks={loaderData.checks} busy={busy} />}
 				{questions.map((question) => (
 					<QuestionField
 						key={question.key}
@@ -121,7 +133,7 @@ export default function ScreenPage({ loaderData, actionData, params }: Route.Com
 						planting={step.planting}
 						values={values}
 						mayNotKnow={!shared.has(question.key)}
-						problems={actionData?.problems ?? []}
+						problems={problems}
 					/>
 				))}
 				{shared.size > 0 && <ScreenUnknown values={values} />}

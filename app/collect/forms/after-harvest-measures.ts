@@ -1,0 +1,118 @@
+import type { Measure } from "#app/collect/form.ts";
+
+/** Loss, yield, and the base quantities that the published cells add up in. */
+export const afterHarvestMeasures: Measure[] = [
+	{
+		key: "crop_loss",
+		kind: "ratio",
+		label: { en: "Crop loss", es: "Pérdida de cosecha" },
+		description: {
+			en: "Pounds not picked as a share of a normal crop, over all reporting operations together.",
+			es: "Libras que no se cosecharon, como parte de una cosecha normal, de todas las fincas juntas.",
+		},
+		unit: "percent",
+		decimals: 0,
+		worse: "more",
+		hue: "loss",
+		numerator: {
+			terms: [
+				{ question: "normal_crop", times: 1 },
+				{ question: "harvested", times: -1 },
+			],
+		},
+		denominator: { terms: [{ question: "normal_crop", times: 1 }] },
+		scale: 100,
+		acrossCrops: true,
+		base: false,
+	},
+	{
+		key: "freeze_loss",
+		kind: "ratio",
+		label: { en: "Loss to freeze or frost", es: "Pérdida por helada" },
+		description: {
+			en: "Pounds lost to freeze or frost as a share of a normal crop.",
+			es: "Libras perdidas por helada o congelación, como parte de una cosecha normal.",
+		},
+		unit: "percent",
+		decimals: 0,
+		worse: "more",
+		hue: "loss",
+		numerator: {
+			terms: [
+				{ question: "normal_crop", times: 1, share: "cause_freeze" },
+				{ question: "harvested", times: -1, share: "cause_freeze" },
+			],
+			atLeast: 0,
+		},
+		denominator: { terms: [{ question: "normal_crop", times: 1 }] },
+		scale: 100,
+		acrossCrops: true,
+		base: false,
+	},
+	{
+		key: "total_loss",
+		kind: "proportion",
+		label: { en: "Operations that lost everything", es: "Fincas que lo perdieron todo" },
+		description: {
+			en: "Share of operations with the crop that picked nothing although a normal year brings some.",
+			es: "Parte de las fincas con el cultivo que no cosecharon nada aunque en un año normal sí cosechan.",
+		},
+		unit: "percent",
+		decimals: 0,
+		worse: "more",
+		hue: "loss",
+		numerator: {
+			indicator: {
+				all: [
+					{ compare: ">", question: "normal_crop", to: { value: 0 } },
+					{ compare: "=", question: "harvested", to: { value: 0 } },
+				],
+			},
+		},
+		denominator: { one: true },
+		scale: 100,
+		acrossCrops: true,
+		base: false,
+	},
+	{
+		key: "yield_per_tree",
+		kind: "ratio",
+		label: { en: "Yield per bearing tree or bush", es: "Rendimiento por árbol o arbusto en producción" },
+		description: {
+			en: "Pounds picked per tree or bush in bearing.",
+			es: "Libras cosechadas por árbol o arbusto en producción.",
+		},
+		unit: "lb_per_tree",
+		decimals: 1,
+		worse: "less",
+		hue: "yield",
+		numerator: { terms: [{ question: "harvested", times: 1 }] },
+		denominator: { terms: [{ question: "bearing_trees", times: 1 }] },
+		scale: 1,
+		acrossCrops: false,
+		base: false,
+	},
+	...(["bearing_trees", "normal_crop", "harvested"] as const).map((question) => ({
+		key: question === "bearing_trees" ? "base.bearing_trees" : `base.${question}_lb`,
+		kind: "total" as const,
+		label: {
+			bearing_trees: { en: "Bearing trees or bushes", es: "Árboles o arbustos en producción" },
+			normal_crop: { en: "Normal crop", es: "Cosecha normal" },
+			harvested: { en: "Harvested", es: "Cosechado" },
+		}[question],
+		description: {
+			bearing_trees: { en: "Trees or bushes in bearing.", es: "Árboles o arbustos en producción." },
+			normal_crop: { en: "Pounds in a normal year.", es: "Libras en un año normal." },
+			harvested: { en: "Pounds picked.", es: "Libras cosechadas." },
+		}[question],
+		unit: question === "bearing_trees" ? ("trees" as const) : ("lb" as const),
+		decimals: 0,
+		worse: null,
+		hue: "yield" as const,
+		numerator: { terms: [{ question, times: 1 }] },
+		denominator: null,
+		scale: 1,
+		acrossCrops: true,
+		base: true,
+	})),
+];
