@@ -94,8 +94,12 @@ function DraftPart({ view }: { view: Route.ComponentProps["loaderData"]["view"] 
 	const report = draftReportProps(view);
 	return (
 		<>
-			{/* Without scripts the page looks again by itself. */}
-			{waiting && <meta httpEquiv="refresh" content="5" />}
+			{/* Without scripts the page looks again by itself; with them a reload would take the reader's place away. */}
+			{waiting && (
+				<noscript>
+					<meta httpEquiv="refresh" content="5" />
+				</noscript>
+			)}
 			<Notice
 				tone={draft.status === "audit_failed" || draft.status === "failed" ? "caution" : "info"}
 				title={t(`status.${draft.status}.title`)}
