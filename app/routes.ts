@@ -51,6 +51,7 @@ export default [
 					route("plantings/new", "routes/grower/planting-new.tsx"),
 					route("plantings/:plantingId", "routes/grower/planting.tsx"),
 					route("place", "routes/grower/place.tsx"),
+					route("settings", "routes/grower/settings.tsx"),
 				]),
 			]),
 		]),

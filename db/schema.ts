@@ -257,6 +257,7 @@ export interface DirectoryOperation {
   created_at: Generated<Timestamp>;
   email: string | null;
   language: Generated<string>;
+  mail_wanted: Generated<boolean>;
   mass_unit: Generated<string>;
   name: string;
   operation_id: Generated<string>;

@@ -31,8 +31,8 @@ export async function countMailings(trx: Trx, viewer: Associate, surveyId: strin
 
 const answered = sql`exists (select from collect.response r where r.survey_id = f.survey_id
 	and r.operation_id = f.operation_id and r.submitted_at is not null)`;
-/** Has an address, has not answered, and has not been found to be out of the survey. */
-const awaited = sql`(coalesce(o.email, '') <> '' and not ${answered} and f.disposition in ('not_reached', 'partial'))`;
+/** Has an address, wants mail, has not answered, and has not been found to be out of the survey. */
+const awaited = sql`(coalesce(o.email, '') <> '' and o.mail_wanted and not ${answered} and f.disposition in ('not_reached', 'partial'))`;
 const invited = sql`(select count(*) from collect.mailing m where m.survey_id = f.survey_id
 	and m.operation_id = f.operation_id and m.kind = 'invitation')`;
 
@@ -113,11 +113,12 @@ export async function sendNewLink(trx: Trx, viewer: Associate, surveyId: string,
 		.where("f.survey_id", "=", surveyId)
 		.where("f.operation_id", "=", operationId)
 		.where("f.state_fips", "in", viewer.stateFips)
-		.select(["o.email", "o.name", "f.state_fips", sql<boolean>`${answered}`.as("answered")])
+		.select(["o.email", "o.mail_wanted", "o.name", "f.state_fips", sql<boolean>`${answered}`.as("answered")])
 		.executeTakeFirst();
 	if (!operation) return "not_found" as const;
 	if (operation.answered) return "already_answered" as const;
 	if (!operation.email) return "no_address" as const;
+	if (!operation.mail_wanted) return "not_wanted" as const;
 	const last = await lastWave(trx, surveyId, "invitation", operationId);
 	if (!Number.isInteger(wave) || wave < 1 || wave > last + 1) return "not_found" as const;
 	const mailing = await trx

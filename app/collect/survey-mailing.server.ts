@@ -3,7 +3,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Words } from "./form.ts";
 
 /** Why a mailing was given up: each has words on the desk's pages (`desk:mail_failure.<code>`). */
-export type MailingFailure = "returned" | "no_address" | "answered" | "survey_closed" | "replaced";
+export type MailingFailure = "returned" | "no_address" | "not_wanted" | "answered" | "survey_closed" | "replaced";
 
 /** What sending one mailing needs to know, under scope network. @returns undefined for an unknown id. */
 export async function findMailing(trx: Trx, mailingId: string) {
@@ -33,6 +33,7 @@ export async function findMailing(trx: Trx, mailingId: string) {
 			"o.name as operation_name",
 			"o.contact_name",
 			"o.email",
+			"o.mail_wanted",
 			"o.language",
 			"d.time_zone",
 			"r.language as response_language",
@@ -62,6 +63,7 @@ export type Mailing = NonNullable<Awaited<ReturnType<typeof findMailing>>>;
 export function reasonNotToSend(mailing: Mailing): MailingFailure | null {
 	if (!mailing.email) return "no_address";
 	if (mailing.kind === "receipt") return null;
+	if (!mailing.mail_wanted) return "not_wanted";
 	if (mailing.submitted_at || mailing.withdrawn_at) return "answered";
 	if (!mailing.is_open) return "survey_closed";
 	if (mailing.replaced) return "replaced";

@@ -123,6 +123,7 @@ export async function findOperation(trx: Trx, viewer: Associate, operationId: st
 			"o.owner_id as ownerId",
 			"o.phone",
 			"o.mass_unit as massUnit",
+			"o.mail_wanted as mailWanted",
 			"c.district_key as districtKey",
 			"s.time_zone as timeZone",
 		])

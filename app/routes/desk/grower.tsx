@@ -63,8 +63,6 @@ export default function GrowerPage({ loaderData, actionData }: Route.ComponentPr
 	);
 }
 
-const massUnitNames = { lb: "lb", bu: "bushels", ton: "tons", kg: "kg" } as const;
-
 function Contact({ operation }: { operation: Route.ComponentProps["loaderData"]["operation"] }) {
 	const { t } = useTranslation("desk");
 	const { email, phone, status } = operation;
@@ -81,6 +79,10 @@ function Contact({ operation }: { operation: Route.ComponentProps["loaderData"][
 					),
 				},
 				{
+					term: t("grower.mailWanted"),
+					detail: t(operation.mailWanted ? "grower.mailIsWanted" : "mail_failure.not_wanted"),
+				},
+				{
 					term: t("grower.phone"),
 					detail: phone ? <a href={`tel:${phone.replace(/[^\d+]/g, "")}`}>{phone}</a> : t("grower.noPhone"),
 				},
@@ -92,7 +94,7 @@ function Contact({ operation }: { operation: Route.ComponentProps["loaderData"][
 				{ term: t("response.language"), detail: t(`common:language.${operation.language}`) },
 				{
 					term: t("grower.massUnit"),
-					detail: t(`common:unitName.${massUnitNames[operation.massUnit as keyof typeof massUnitNames]}`),
+					detail: t(`grower:screen.unit.${operation.massUnit}`),
 				},
 				{
 					term: t("grower.status"),

@@ -97,7 +97,11 @@ export default function DeskReport({ loaderData, actionData }: Route.ComponentPr
 					<Link to={href("/reports/:slug", { slug: report.slug })}>{t("report_editor.seePublished")}</Link>
 				</Notice>
 			)}
-			{told ? <ReportPreview told={told} published={report.state === "published"} /> : <ReportEditor report={report} offered={offered} answer={actionData} />}
+			{told ? (
+				<ReportPreview told={told} published={report.state === "published"} />
+			) : (
+				<ReportEditor report={report} offered={offered} answer={actionData} />
+			)}
 		</Page>
 	);
 }

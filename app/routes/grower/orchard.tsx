@@ -130,7 +130,7 @@ function Directory({ operation }: { operation: Operation }) {
 				]}
 			/>
 			<ul className="no-print mt-3">
-				{(["plantings", "place"] as const).map((page) => (
+				{(["plantings", "place", "settings"] as const).map((page) => (
 					<li key={page}>
 						<Link
 							to={href(`/orchard/:operationId/${page}`, { operationId })}
@@ -142,7 +142,6 @@ function Directory({ operation }: { operation: Operation }) {
 					</li>
 				))}
 			</ul>
-			<p className="mt-3 text-base text-quiet">{t("home.mend")}</p>
 		</Section>
 	);
 }

@@ -15,6 +15,7 @@ import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { getAnswering } from "./parts/answering.server.ts";
+import { Pledge } from "./parts/pledge.tsx";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const answering = await getAnswering(context, params);
@@ -90,17 +91,5 @@ export default function Start({ loaderData, params }: Route.ComponentProps) {
 				</Form>
 			)}
 		</Page>
-	);
-}
-
-/** What the network promises before it asks; a change of these words is a new `pledgeVersion`. */
-function Pledge() {
-	const { t } = useTranslation("grower");
-	return (
-		<ul className="list-disc space-y-2 pl-6">
-			{(["use", "who", "never", "law", "free"] as const).map((part) => (
-				<li key={part}>{t(`pledge.${part}`)}</li>
-			))}
-		</ul>
 	);
 }

@@ -1,0 +1,58 @@
+import { sql } from "kysely";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Grower } from "#app/auth/viewer.ts";
+import { findOwnOperation } from "./own-operation.server.ts";
+
+/** How a grower is reached, and in which words and units. */
+export type OwnSettings = {
+	contactName: string;
+	email: string | null;
+	phone: string | null;
+	language: "en" | "es";
+	/** One of the units of weight that the survey forms know. */
+	massUnit: string;
+	/** Whether invitations and reminders are sent; a receipt is sent in either case. */
+	mailWanted: boolean;
+};
+
+export async function findOwnSettings(trx: Trx, viewer: Grower, operationId: string) {
+	const operation = await findOwnOperation(trx, viewer, operationId);
+	if (!operation) return undefined;
+	const row = await trx
+		.selectFrom("directory.operation")
+		.select(["contact_name", "email", "phone", "language", "mass_unit", "mail_wanted"])
+		.where("operation_id", "=", operationId)
+		.executeTakeFirstOrThrow();
+	const settings: OwnSettings = {
+		contactName: row.contact_name,
+		email: row.email,
+		phone: row.phone,
+		language: row.language === "es" ? "es" : "en",
+		massUnit: row.mass_unit,
+		mailWanted: row.mail_wanted,
+	};
+	return { operation, settings };
+}
+
+export async function saveOwnSettings(
+	trx: Trx,
+	viewer: Grower,
+	operationId: string,
+	settings: OwnSettings,
+): Promise<"saved" | "not_found"> {
+	if (!(await findOwnOperation(trx, viewer, operationId))) return "not_found";
+	await trx
+		.updateTable("directory.operation")
+		.set({
+			contact_name: settings.contactName,
+			email: settings.email,
+			phone: settings.phone,
+			language: settings.language,
+			mass_unit: settings.massUnit,
+			mail_wanted: settings.mailWanted,
+			updated_at: sql`now()`,
+		})
+		.where("operation_id", "=", operationId)
+		.execute();
+	return "saved";
+}
