@@ -69,6 +69,12 @@ export interface AuthSession {
   session_hash: string;
 }
 
+export interface AuthTries {
+  expire: number | null;
+  key: string;
+  points: Generated<number>;
+}
+
 export interface CollectAnswer {
   answer_id: Generated<string>;
   answered_at: Generated<Timestamp>;
@@ -400,6 +406,7 @@ export interface DB {
   "auth.person": AuthPerson;
   "auth.role_grant": AuthRoleGrant;
   "auth.session": AuthSession;
+  "auth.tries": AuthTries;
   "collect.answer": CollectAnswer;
   "collect.fact": CollectFact;
   "collect.form": CollectForm;

@@ -78,6 +78,17 @@ test("a wrong, a cut, an expired, a replaced and a closed survey's link are answ
 	expect((await visitor.get(good.link)).status).toBe(200);
 });
 
+test("who tries too many wrong links has to wait, and whoever has a link that works does not", async () => {
+	const { link } = await asked();
+	const visitor = httpVisitor(stack.baseUrl, "en", { "x-forwarded-for": "203.0.113.7" });
+	const statuses = [];
+	for (let tried = 0; tried < 62; tried += 1) statuses.push((await visitor.get(`/r/${"y".repeat(43)}`)).status);
+	expect(statuses).toEqual([...Array<number>(60).fill(404), 429, 429]);
+	expect((await visitor.get(link)).status).toBe(200);
+	const neighbor = httpVisitor(stack.baseUrl, "en", { "x-forwarded-for": "203.0.113.8" });
+	expect((await neighbor.get(`/r/${"y".repeat(43)}`)).status).toBe(404);
+});
+
 test("opening a link changes nothing, and shows no whole name, contact or answer", async () => {
 	const { link, surveyId, operationId } = await asked();
 	const rows = () =>

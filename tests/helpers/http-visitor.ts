@@ -1,7 +1,7 @@
 export type Answered = { status: number; location: string; text: string };
 
 /** Somebody without a browser, or without scripts in it: keeps cookies, posts forms, follows nothing by itself. */
-export function httpVisitor(baseUrl: string, language = "en") {
+export function httpVisitor(baseUrl: string, language = "en", headers: Record<string, string> = {}) {
 	const jar = new Map<string, string>();
 	async function send(address: string, init: RequestInit = {}): Promise<Answered> {
 		const url = new URL(address, baseUrl);
@@ -12,6 +12,7 @@ export function httpVisitor(baseUrl: string, language = "en") {
 				cookie: [...jar].map((pair) => pair.join("=")).join("; "),
 				origin: url.origin,
 				"accept-language": language,
+				...headers,
 			},
 		});
 		for (const line of response.headers.getSetCookie()) {

@@ -41,7 +41,6 @@ const notImported: Record<string, string> = {
 	"axe-core": "what @axe-core/playwright runs",
 	oxlint: "run by npm run lint",
 	prettier: "run by npm run format",
-	"rate-limiter-flexible": "limits on tries are still to come",
 	vite: "what React Router's build and vitest run on",
 };
 

@@ -1,6 +1,7 @@
 import { useTranslation } from "react-i18next";
 import { Form, href, redirect } from "react-router";
 import type { Route } from "./+types/link";
+import { countWrongLink } from "#app/auth/link-tries.server.ts";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { findLink, markOpened, partOf } from "#app/collect/personal-link.server.ts";
@@ -14,7 +15,7 @@ import { refusal } from "#app/lib/refusal.ts";
 /** Looks only, for mail scanners open links too; a forwarded link shows no whole name. */
 export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const link = await scopedTransaction({ kind: "network" }, (trx) => findLink(trx, params.token));
-	if (!link) throw refusal("link_not_valid");
+	if (!link) throw await refused(request);
 	await readInOwnLanguage(context, request, link.language);
 	return { title: link.title, season: link.season, operation: partOf(link.operationName), county: link.countyName };
 }
@@ -32,14 +33,19 @@ async function readInOwnLanguage(context: Route.LoaderArgs["context"], request: 
 	});
 }
 
+/** One answer for every link that opens nothing, until somebody has tried too many of them. */
+async function refused(request: Request) {
+	return refusal((await countWrongLink(request)) ? "link_not_valid" : "too_many_tries");
+}
+
 /** The button trades the token for a session, and the browser goes on to an address that does not hold it. */
-export async function action({ context, params }: Route.ActionArgs) {
+export async function action({ context, params, request }: Route.ActionArgs) {
 	const link = await scopedTransaction({ kind: "network" }, async (trx) => {
 		const found = await findLink(trx, params.token);
 		if (found) await markOpened(trx, found.personalLinkId);
 		return found;
 	});
-	if (!link) throw refusal("link_not_valid");
+	if (!link) throw await refused(request);
 	context.get(sessionContext).set("personalLinkId", link.personalLinkId);
 	const { surveyId, operationId } = link;
 	return redirect(href("/answer/:surveyId/:operationId", { surveyId, operationId }), 303);
