@@ -4,8 +4,10 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Answer, Confirmation } from "./form.ts";
 import { answersByPlace, placeOf, type PlantingAsked } from "./steps.ts";
 
+/** A planting as it was asked about; what was sent in before trees were kept with it lacks them. */
+export type PlantingSent = { plantingId: string; cropKey: string; bearingTrees?: number };
 /** What was sent in once: the answers that were kept, and which plantings they are about. Never changed afterwards, but it can be withdrawn. */
-export type Submission = { plantings: { plantingId: string; cropKey: string }[]; answers: Answer[] };
+export type Submission = { plantings: PlantingSent[]; answers: Answer[] };
 
 export async function listAnswers(trx: Trx, responseId: string): Promise<Answer[]> {
 	const rows = await trx

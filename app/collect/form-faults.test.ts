@@ -1,11 +1,12 @@
 import { describe, expect, test } from "vitest";
 import type { Condition } from "#app/lib/condition.ts";
-import { FormDefinition, type Measure, type Question, type Screen } from "./form.ts";
+import { FormDefinition, type Measure, type Question, type Screen, type Share } from "./form.ts";
 import { afterHarvest } from "./forms/after-harvest.ts";
 
 const words = { en: "Text", es: "Texto" };
 const base = { text: words, required: false, sensitive: false };
 const option = (key: string) => ({ key, text: words });
+const scored = (key: string, score: number) => ({ ...option(key), score });
 const choice = (key: string, condition?: Condition): Question => ({
 	...base,
 	key,
@@ -45,7 +46,7 @@ const total = (numerator: Measure["numerator"]): Measure => ({
 	acrossCrops: true,
 	base: false,
 });
-const sumOf = (question: string, share?: string) => total({ terms: [{ question, times: 1, share }] });
+const sumOf = (question: string, share?: Share) => total({ terms: [{ question, times: 1, share }] });
 const faults = (screens: Screen[], measures: Measure[] = [total({ one: true })]) => {
 	const parsed = FormDefinition.safeParse({ key: "form", title: words, minutes: 1, screens, measures });
 	return parsed.success ? [] : parsed.error.issues.map(({ message }) => message);
@@ -131,7 +132,7 @@ describe("conditions", () => {
 	});
 });
 
-describe("keys", () => {
+describe("keys and options", () => {
 	test.each<[string, Screen[], string]>([
 		["screens", [screen("a", [choice("x")]), screen("a", [choice("y")])], 'two things are screen "a"'],
 		[
@@ -154,7 +155,21 @@ describe("keys", () => {
 			[screen("a", [{ ...base, key: "x", type: "rating", options: [option("low"), option("low")] }])],
 			'two things are option of "x" "low"',
 		],
-	])("of %s are there once", (_kind, screens, message) => expect(faults(screens)).toEqual([message]));
+		[
+			"scores",
+			[screen("a", [{ ...base, key: "x", type: "rating", options: [scored("low", 1), option("high")] }])],
+			'"x" has a score for some of its options only',
+		],
+		[
+			"crops",
+			[
+				screen("a", [
+					{ ...base, key: "x", type: "several", options: [{ ...option("scab"), crops: ["apple"] }, option("other")] },
+				]),
+			],
+			'"x" has options for some crops, and is asked of no planting',
+		],
+	])("%s", (_kind, screens, message) => expect(faults(screens)).toEqual([message]));
 
 	test("of measures are there once", () => {
 		const one = total({ one: true });
@@ -229,7 +244,18 @@ describe("checks", () => {
 
 describe("measures", () => {
 	const screens = [
-		screen("table", [trees("planted"), choice("sprayed"), percent("part")], { perPlanting: true }),
+		screen(
+			"table",
+			[
+				trees("planted"),
+				choice("sprayed"),
+				percent("part"),
+				trees("felled_of"),
+				{ ...base, key: "severity", type: "rating", options: [scored("low", 1), scored("high", 3)] },
+				{ ...base, key: "look", type: "rating", options: [option("poor"), option("good")] },
+			],
+			{ perPlanting: true },
+		),
 		screen("once", [percent("cause"), choice("seen")]),
 	];
 	test.each<[string, Measure, string[]]>([
@@ -237,10 +263,41 @@ describe("measures", () => {
 		["an unknown question", sumOf("felled"), ['measure "sum" names no question "felled"']],
 		["a choice", sumOf("seen"), ['measure "sum" cannot sum "seen", which is no number']],
 		["an unknown share", sumOf("planted", "blame"), ['measure "sum" names no question "blame"']],
+		["a share that each planting has", sumOf("planted", "part"), []],
+		["a share of what is known", total({ terms: [{ known: "bearing_trees", times: 1, share: "part" }] }), []],
+		["how many of how many", sumOf("planted", { part: "felled_of", whole: "planted" }), []],
+		["a scored rating", sumOf("planted", "severity"), []],
+		["a share that is none", sumOf("planted", "sprayed"), ['"sprayed" of measure "sum" is no percent and no score']],
+		["a rating without scores", sumOf("planted", "look"), ['"look" of measure "sum" is no percent and no score']],
 		[
-			"a share that each planting has",
-			sumOf("planted", "part"),
-			['"part" of measure "sum" is no percent question that is asked once'],
+			"a part of what is no number",
+			sumOf("planted", { part: "felled_of", whole: "sprayed" }),
+			['measure "sum" cannot sum "sprayed", which is no number'],
+		],
+		[
+			"what is asked once, by a share that each planting has",
+			sumOf("cause", "part"),
+			['measure "sum" weighs what is asked once by what each planting has'],
+		],
+		[
+			"some crops and all together",
+			{ ...sumOf("planted"), crops: ["apple"] },
+			['measure "sum" is told of some crops, and cannot be told of all together'],
+		],
+		[
+			"no base that is called one",
+			{ ...sumOf("planted"), key: "base.sum" },
+			['measure "base.sum" is a base quantity if and only if its key begins with "base."'],
+		],
+		[
+			"a base that is no total",
+			{ ...sumOf("planted"), key: "base.sum", base: true, kind: "mean", denominator: { one: true } },
+			['measure "base.sum" is a base quantity, and no total'],
+		],
+		[
+			"a total that is divided",
+			{ ...sumOf("planted"), denominator: { one: true } },
+			['measure "sum" needs a denominator if and only if it is no total'],
 		],
 		["a planting's choice", total({ indicator: { any_planting: is("sprayed") } }), []],
 		[

@@ -1,7 +1,8 @@
-import { comparisonsIn, questionsIn, questionsOf } from "#app/lib/condition.ts";
+import { questionsIn } from "#app/lib/condition.ts";
 import { checksOf } from "./checks.ts";
-import { conditionFaults, type Fault, isNumber, type Placed } from "./condition-faults.ts";
-import type { FormDefinition, Quantity, Screen } from "./form.ts";
+import { conditionFaults, type Fault, type Placed } from "./condition-faults.ts";
+import type { FormDefinition, Question, Screen } from "./form.ts";
+import { measureFaults } from "./measure-faults.ts";
 
 type Form = Pick<FormDefinition, "screens" | "measures">;
 
@@ -19,12 +20,7 @@ export function* faultsOf(form: Form): Generator<Fault> {
 		const asked = { what: `the condition of "${question.key}"`, before: at, perPlanting: screen.perPlanting };
 		if (question.condition) yield* conditionFaults(question.condition, asked, path, byKey);
 	}
-	for (const [index, measure] of form.measures.entries()) {
-		for (const part of ["numerator", "denominator"] as const) {
-			const quantity = measure[part];
-			if (quantity) yield* quantityFaults(quantity, `measure "${measure.key}"`, ["measures", index, part], byKey);
-		}
-	}
+	for (const [index, measure] of form.measures.entries()) yield* measureFaults(measure, ["measures", index], byKey);
 }
 
 function placeQuestions(screens: Screen[]): Placed[] {
@@ -39,12 +35,21 @@ function* keyFaults(form: Form, placed: Placed[]): Generator<Fault> {
 	yield* repeated(form.measures, "measure", ["measures"]);
 	yield* repeated(form.screens.flatMap(checksOf), "check", ["screens"]);
 	const taken = new Set(["screen_kind", "confirm"]);
-	for (const { question, path } of placed) {
+	for (const { question, screen, path } of placed) {
 		if (taken.has(question.key))
 			yield { path: [...path, "key"], message: `"${question.key}" names two questions, or a field beside another` };
 		for (const end of ["", "_unit", "_crate", "_kind"]) taken.add(question.key + end);
-		if ("options" in question) yield* repeated(question.options, `option of "${question.key}"`, [...path, "options"]);
+		yield* optionFaults(question, screen, [...path, "options"]);
 	}
+}
+
+function* optionFaults(question: Question, screen: Screen, path: (string | number)[]): Generator<Fault> {
+	if (!("options" in question)) return;
+	yield* repeated(question.options, `option of "${question.key}"`, path);
+	if (question.type === "several" && !screen.perPlanting && question.options.some(({ crops }) => crops))
+		yield { path, message: `"${question.key}" has options for some crops, and is asked of no planting` };
+	if (question.type === "rating" && new Set(question.options.map(({ score }) => score === undefined)).size > 1)
+		yield { path, message: `"${question.key}" has a score for some of its options only` };
 }
 
 function* repeated(things: { key: string }[], what: string, path: (string | number)[]): Generator<Fault> {
@@ -90,37 +95,5 @@ function* checkFaults(
 		// A confirmation is kept with the answer, so there must be one whenever the check is raised.
 		if (!questionsIn(when).includes(question) || !screen.questions.some((one) => one.key === question))
 			yield { path: at, message: `check "${key}" stands beside "${question}", which it does not speak of` };
-	}
-}
-
-function* quantityFaults(
-	quantity: Quantity,
-	what: string,
-	path: (string | number)[],
-	byKey: Map<string, Placed>,
-): Generator<Fault> {
-	if ("one" in quantity) return;
-	if ("indicator" in quantity) {
-		// Over a whole operation, so every planting's number stands for the sum of the crop.
-		const asked = { what: `the indicator of ${what}`, before: Infinity, perPlanting: true };
-		yield* conditionFaults(quantity.indicator, asked, path, byKey);
-		for (const { of: comparison, inRows } of comparisonsIn(quantity.indicator)) {
-			for (const key of questionsOf(comparison)) {
-				const named = byKey.get(key);
-				if (named?.screen.perPlanting && !inRows && !isNumber(named.question))
-					yield { path, message: `${what} cannot sum "${key}": put it into any_planting` };
-			}
-		}
-		return;
-	}
-	for (const { question, share } of quantity.terms) {
-		const named = byKey.get(question);
-		if (!named) yield { path, message: `${what} names no question "${question}"` };
-		else if (!isNumber(named.question)) yield { path, message: `${what} cannot sum "${question}", which is no number` };
-		if (share === undefined) continue;
-		const of = byKey.get(share);
-		if (!of) yield { path, message: `${what} names no question "${share}"` };
-		else if (of.question.type !== "percent" || of.screen.perPlanting)
-			yield { path, message: `"${share}" of ${what} is no percent question that is asked once` };
 	}
 }

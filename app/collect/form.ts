@@ -67,13 +67,16 @@ export const Question = z.discriminatedUnion("type", [
 	z.object({
 		...questionBase,
 		type: z.literal("several"),
-		/** An option that is `alone`, such as "none of these", goes with no other. */
-		options: z.array(z.object({ key: Key, text: Words, alone: z.boolean().optional() })).min(2),
+		/** An option that is `alone`, such as "none of these", goes with no other; one with `crops` is offered for those only. */
+		options: z
+			.array(z.object({ key: Key, text: Words, alone: z.boolean().optional(), crops: z.array(Key).optional() }))
+			.min(2),
 	}),
 	z.object({
 		...questionBase,
 		type: z.literal("rating"),
-		options: z.array(z.object({ key: Key, text: Words })).min(2),
+		/** `score` is what a measure counts an option as; either all options have one or none. */
+		options: z.array(z.object({ key: Key, text: Words, score: z.number().optional() })).min(2),
 	}),
 	z.object({ ...questionBase, type: z.literal("short_text"), maxLength: z.number().int().default(200) }),
 	z.object({ ...questionBase, type: z.literal("long_text"), maxLength: z.number().int().default(5000) }),
@@ -108,9 +111,22 @@ export const Screen = z.object({
 });
 export type Screen = z.infer<typeof Screen>;
 
-/** Σ times · question (· share/100): a linear form of an operation's answers, plantings of the crop summed first. */
+/** A percent or scored question, or how many percent one number is of another. */
+const Share = z.union([Key, z.object({ part: Key, whole: Key })]);
+export type Share = z.infer<typeof Share>;
+const weights = { times: z.number(), share: Share.optional() };
+/** A question's number, or what the directory knew of each planting when the answers were sent in. */
+const Term = z.union([
+	z.object({ question: Key, ...weights }),
+	z.object({ known: z.literal("bearing_trees"), ...weights }),
+]);
+export type Term = z.infer<typeof Term>;
+/**
+ * Σ times · number (· share/100): a linear form of an operation's answers over its plantings of the crop. A share that each
+ * planting has weighs that planting's own number.
+ */
 const LinearForm = z.object({
-	terms: z.array(z.object({ question: Key, times: z.number(), share: Key.optional() })).min(1),
+	terms: z.array(Term).min(1),
 	/** The form's least value: 0 where a gain in one crop must not count as a negative loss to a cause. */
 	atLeast: z.number().optional(),
 });
@@ -126,7 +142,7 @@ export const Measure = z.object({
 	kind: z.enum(["ratio", "mean", "total", "proportion"]),
 	label: Words,
 	description: Words,
-	unit: z.enum(["percent", "lb_per_tree", "lb", "trees", "operations", "percent_of_normal"]),
+	unit: z.enum(["percent", "lb_per_tree", "lb", "trees", "operations", "percent_of_normal", "score"]),
 	decimals: z.number().int().min(0).max(6),
 	/** Which direction is bad news, if any; maps and tables say it in words, never by colour alone. */
 	worse: z.enum(["more", "less"]).nullable(),
@@ -138,7 +154,12 @@ export const Measure = z.object({
 	scale: z.number(),
 	/** Whether sums over all crops mean something. */
 	acrossCrops: z.boolean(),
-	/** A base quantity of the protection table; estimated for protection, not published as a measure. */
+	/** The crops that it is told of, where a form asks something of some crops only. */
+	crops: z.array(Key).optional(),
+	/**
+	 * A base quantity of the protection table, with a key that begins with "base.": estimated for protection, not published
+	 * as a measure. What the form's measures are made of should be among them.
+	 */
 	base: z.boolean().default(false),
 });
 export type Measure = z.infer<typeof Measure>;

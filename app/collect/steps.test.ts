@@ -1,7 +1,7 @@
 import { describe, expect, test } from "vitest";
 import type { Answer, FormDefinition, Question } from "./form.ts";
 import { afterHarvest } from "./forms/after-harvest.ts";
-import { keptAnswers, listSteps, type PlantingAsked, questionsAsked } from "./steps.ts";
+import { keptAnswers, listAsked, listSteps, type PlantingAsked, questionsAsked } from "./steps.ts";
 
 const planting = (plantingId: string, cropKey = "apple"): PlantingAsked => ({
 	plantingId,
@@ -118,6 +118,32 @@ describe("conditions on single questions", () => {
 	test("a step that is not asked has no questions", () => {
 		const [, second] = listSteps(form, one, [given("seen", "yes")]);
 		expect(questionsAsked(second!, form, one, [given("seen", "no")])).toEqual([]);
+	});
+	test("a planting is offered the options of its crop, and asked nothing where none is left", () => {
+		const option = (key: string, more = {}) => ({ key, text: words, ...more });
+		const seen: Question = {
+			key: "seen",
+			type: "several",
+			text: words,
+			required: true,
+			sensitive: false,
+			options: [
+				option("scab", { crops: ["apple"] }),
+				option("brown_rot", { crops: ["tart_cherry", "plum"] }),
+				option("black_knot", { crops: ["plum"] }),
+				option("none", { alone: true }),
+			],
+		};
+		const screens = [{ key: "only", title: words, perPlanting: true, questions: [seen] }];
+		const all = [planting("p1"), planting("p2", "plum"), planting("p3", "pawpaw")];
+		const offered = listAsked({ ...form, screens }, all, []).map(({ step, questions }) => [
+			step.key,
+			questions.flatMap((question) => ("options" in question ? question.options.map(({ key }) => key) : [])),
+		]);
+		expect(offered).toEqual([
+			["planting-p1", ["scab", "none"]],
+			["planting-p2", ["brown_rot", "black_knot", "none"]],
+		]);
 	});
 	test("a photo is not asked for, as none can be given yet", () => {
 		const photo: Question = { key: "photo", type: "photo", text: words, required: true, sensitive: false };

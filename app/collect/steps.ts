@@ -75,8 +75,19 @@ export function listAllSteps(definition: FormDefinition, plantings: PlantingAske
 		if (!screen.perPlanting) return [{ key: screen.key, screen, planting: null }];
 		// A second table of one form needs keys of its own.
 		const prefix = screen === table ? "planting" : screen.key;
-		return plantings.map((planting) => ({ key: `${prefix}-${planting.plantingId}`, screen, planting }));
+		return plantings.flatMap((planting): Step[] => {
+			const questions = screen.questions.flatMap((question) => askedOf(question, planting.cropKey));
+			if (questions.length === 0) return [];
+			return [{ key: `${prefix}-${planting.plantingId}`, screen: { ...screen, questions }, planting }];
+		});
 	});
+}
+
+/** A question with the options that are offered for a crop; without any, there is nothing to ask. */
+function askedOf(question: Question, cropKey: string): Question[] {
+	if (question.type !== "several") return [question];
+	const options = question.options.filter(({ crops }) => crops === undefined || crops.includes(cropKey));
+	return options.every(({ alone }) => alone) ? [] : [{ ...question, options }];
 }
 
 /** A step with the questions that are asked of it now; with all of them where it is not asked. */

@@ -82,7 +82,7 @@ async function keepSubmission(
 	{ version, receiptCode, language }: { version: number; receiptCode: string; language: "en" | "es" },
 ): Promise<void> {
 	const submission: Submission = {
-		plantings: plantings.map(({ plantingId, cropKey }) => ({ plantingId, cropKey })),
+		plantings: plantings.map(({ plantingId, cropKey, bearingTrees }) => ({ plantingId, cropKey, bearingTrees })),
 		answers,
 	};
 	await trx

@@ -21,6 +21,7 @@ type Inputs = {
 	tallies: Tally[];
 	frame: (FrameStratum & { cropKey: string })[];
 	frameCells: ReadonlySet<string>;
+	baseKeys: string[];
 	shares: OwnerShares[];
 };
 
@@ -39,7 +40,7 @@ export async function computeReleaseDraft(
 	const cutOffs = { steady: rules.steadyCv, care: rules.careCv };
 	const areas = method.areas.flatMap(({ areaKey, parentKey }) => (parentKey === null ? [] : [{ areaKey, parentKey }]));
 	const started = performance.now();
-	const table = surveyTable(areas, method.cropKeys, shares);
+	const table = surveyTable(areas, method.cropKeys, shares, inputs.baseKeys);
 	const protection = await protect(table, rules);
 	const seconds = (performance.now() - started) / 1000;
 	const { estimates, joins } = estimateSurvey({
@@ -77,6 +78,7 @@ async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | un
 	if (!row) return undefined;
 	const definition = FormDefinition.parse(row.definition);
 	const surveyId = row.survey_id;
+	const baseKeys = definition.measures.flatMap(({ base, key }) => (base ? key.replace(/^base\./, "") : []));
 	const states = await countResponses(trx, surveyId);
 	const tallies = await listTallies(trx, surveyId);
 	const surveyStates = new Set(states.map((state) => state.stateFips));
@@ -102,7 +104,8 @@ async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | un
 		tallies,
 		frame: await listFrameStrata(trx, surveyId),
 		frameCells: await listFrameCells(trx, surveyId),
-		shares: await listOwnerShares(trx, surveyId),
+		baseKeys,
+		shares: await listOwnerShares(trx, surveyId, baseKeys),
 	};
 }
 

@@ -2,7 +2,7 @@ import type { TFunction } from "i18next";
 
 /** Units of published figures, and those in which growers tell their answers. */
 export type Unit =
-	| ("percent" | "percent_of_normal" | "lb_per_tree" | "lb" | "trees" | "operations")
+	| ("percent" | "percent_of_normal" | "lb_per_tree" | "lb" | "trees" | "operations" | "score")
 	| ("kg" | "tons" | "bushels" | "half_bushels" | "pecks" | "dry_quarts" | "crates")
 	| ("acres" | "hectares" | "fahrenheit" | "celsius" | "row_feet" | "row_meters" | "tree" | "bush");
 

@@ -79,7 +79,7 @@ function tableOf(cells: ReturnType<typeof count>) {
 		const soleOwner = owners.size === 1 ? String([...owners.keys()][0]) : null;
 		return { areaKey, cropKey, owners: owners.size, fewestOwners: owners.size, soleOwner, quantities };
 	});
-	return surveyTable(areaList, crops, shares);
+	return surveyTable(areaList, crops, shares, base.slice(1));
 }
 
 /** Everything an attacker can write down about the smallest cells from the published ones, as rows of a program. */

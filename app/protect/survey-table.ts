@@ -5,31 +5,37 @@ import { buildTable, type ProtectionTable, type Quantity } from "./table.ts";
 export const REGION = "network";
 export const ALL_CROPS = "all";
 
-/** The base quantities of a survey's table. Measures are made of them, so what hides these hides every measure. */
-export const surveyQuantities: readonly Quantity[] = [
-	{ key: "respondents", counted: true, overlapsOver: ["crop"] },
-	{ key: "bearing_trees" },
-	{ key: "normal_crop_lb" },
-	{ key: "harvested_lb" },
-];
+/** Operations that answered: a quantity of every survey. */
+export const RESPONDENTS = "respondents";
+
+/**
+ * The base quantities of a survey's table: who answered, and what its form declares. Measures are made of them, so what
+ * hides these hides every measure.
+ * @param baseKeys keys of the form's base measures, without their "base.".
+ */
+export function surveyQuantities(baseKeys: readonly string[]): Quantity[] {
+	return [{ key: RESPONDENTS, counted: true, overlapsOver: ["crop"] }, ...baseKeys.map((key) => ({ key }))];
+}
 
 /**
  * A survey's table of area by crop. Cell keys are `area|crop`, as `cellKey(areaKey, cropKey)` makes them.
  * @param areas every county, district and state of the survey with the area right above; states have `region` above.
  * @param cropKeys the crops asked about, without `all`.
+ * @param baseKeys as for `surveyQuantities`; the shares must have them.
  * @throws {RangeError} when shares lie outside the areas or crops, or do not add up.
  */
 export function surveyTable(
 	areas: readonly { areaKey: string; parentKey: string }[],
 	cropKeys: readonly string[],
 	shares: readonly OwnerShares[],
+	baseKeys: readonly string[],
 ): ProtectionTable {
 	return buildTable({
 		hierarchies: [
 			{ name: "area", root: REGION, parent: Object.fromEntries(areas.map((a) => [a.areaKey, a.parentKey])) },
 			{ name: "crop", root: ALL_CROPS, parent: Object.fromEntries(cropKeys.map((key) => [key, ALL_CROPS])) },
 		],
-		quantities: surveyQuantities,
+		quantities: surveyQuantities(baseKeys),
 		cells: shares.map(({ areaKey, cropKey, ...cell }) => ({ ...cell, coordinates: [areaKey, cropKey] })),
 	});
 }

@@ -16,7 +16,7 @@ const ReleaseMeasure = z.object({
 	kind: z.enum(["ratio", "mean", "total", "proportion"]),
 	label: Words,
 	description: Words,
-	unit: z.enum(["percent", "lb_per_tree", "lb", "trees", "operations", "percent_of_normal"]),
+	unit: z.enum(["percent", "lb_per_tree", "lb", "trees", "operations", "percent_of_normal", "score"]),
 	decimals: z.number().int(),
 	worse: z.enum(["more", "less"]).nullable(),
 	hue: z.string(),

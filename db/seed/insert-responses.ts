@@ -82,7 +82,11 @@ function plantingsByOperation(asked: Asked[]) {
 	return new Map(
 		asked.map(({ operation_id, plantings }) => [
 			operation_id,
-			plantings.map(({ planting_id, crop_key }) => ({ plantingId: planting_id, cropKey: crop_key })),
+			plantings.map(({ planting_id, crop_key, bearing_trees }) => ({
+				plantingId: planting_id,
+				cropKey: crop_key,
+				bearingTrees: bearing_trees,
+			})),
 		]),
 	);
 }
