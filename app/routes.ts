@@ -33,6 +33,8 @@ export default [
 	route("sign-in/start", "routes/public/sign-in-start.ts"),
 	route("sign-in/callback", "routes/public/sign-in-callback.ts"),
 
+	route("orchard/:file", "routes/grower/my-data.ts"),
+
 	// Growers: one column, nothing but the question.
 	layout("routes/grower/layout.tsx", [
 		route("r/:token", "routes/grower/link.tsx"),

@@ -29,6 +29,22 @@ export default function Orchard({ loaderData }: Route.ComponentProps) {
 					<Directory operation={operation} />
 				</Section>
 			))}
+			<Section title={t("home.take")}>
+				<p className="mb-3">{t("home.takeLead")}</p>
+				<ul>
+					{(["json", "csv"] as const).map((kind) => (
+						<li key={kind}>
+							<a
+								href={href("/orchard/:file", { file: `my-data.${kind}` })}
+								download
+								className="inline-flex min-h-11 items-center"
+							>
+								{t(`home.takeAs.${kind}`)}
+							</a>
+						</li>
+					))}
+				</ul>
+			</Section>
 		</Page>
 	);
 }
