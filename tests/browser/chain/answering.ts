@@ -77,6 +77,51 @@ export async function answerByHand(
 	return code!;
 }
 
+/** Presses Tab until the focus is on what is wanted; fails when the keyboard does not get there. */
+async function tabTo(page: Page, selector: string): Promise<void> {
+	const there = () => page.evaluate((wanted) => document.activeElement?.matches(wanted) ?? false, selector);
+	for (let pressed = 0; pressed < 80; pressed += 1) {
+		await page.keyboard.press("Tab");
+		if (await there()) return;
+	}
+	throw new Error(`the keyboard does not reach ${selector} on ${page.url()}`);
+}
+
+/** Answers a whole survey without a pointer. */
+export async function answerByKeyboard(page: Page, link: string, grower: TestGrower): Promise<void> {
+	const button = "main form:last-of-type button:not([name])";
+	const press = async () => {
+		const before = page.url();
+		await tabTo(page, button);
+		await page.keyboard.press("Enter");
+		await page.waitForURL((url) => url.href !== before);
+	};
+	const type = async (name: string, text: string) => {
+		await tabTo(page, `[name=${name}]`);
+		await page.keyboard.type(text);
+	};
+	await page.goto(link);
+	await press();
+	await press();
+	await page.locator("[name=normal_crop]").waitFor();
+	await type("normal_crop", String(grower.normalLb));
+	await type("harvested", String(grower.harvestedLb));
+	await press();
+	await page.locator("[name=cause_freeze]").waitFor();
+	await type("cause_freeze", String(grower.freezeShare));
+	await type("cause_other", String(100 - grower.freezeShare));
+	await press();
+	await page.locator("[name=first_harvest]").waitFor();
+	await press();
+	await page.locator("[name=bud_set]").first().waitFor();
+	await tabTo(page, "[name=bud_set]");
+	await page.keyboard.press("Space");
+	await press();
+	await page.getByRole("button", { name: said[grower.language].send }).waitFor();
+	await press();
+	await page.getByRole("heading", { name: said[grower.language].thanks }).waitFor();
+}
+
 /** Answers by posting the same forms that a page without scripts posts. */
 export async function answerByForms(link: string, grower: TestGrower): Promise<void> {
 	const visitor = httpVisitor(link);
