@@ -4,6 +4,8 @@ import { defineConfig } from "vitest/config";
 
 export default defineConfig({
 	plugins: [tailwindcss(), ...(process.env.VITEST ? [] : [reactRouter()])],
+	// The scripts of growers' pages stand by themselves, like workers: each one file, with an address of its own.
+	worker: { format: "es" },
 	test: {
 		projects: [
 			{

@@ -1,7 +1,7 @@
 import "./app.css";
 import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
-import { Links, Meta, Outlet, Scripts, ScrollRestoration } from "react-router";
+import { Links, Meta, Outlet, Scripts, ScrollRestoration, useMatches } from "react-router";
 import type { Route } from "./+types/root";
 import { sessionContext, sessionMiddleware } from "#app/auth/session.server.ts";
 import { visitorContext, visitorMiddleware } from "#app/auth/visitor.server.ts";
@@ -48,6 +48,7 @@ export const links: Route.LinksFunction = () => [{ rel: "icon", href: "/favicon.
 export function Layout({ children }: { children: ReactNode }) {
 	const { i18n } = useTranslation();
 	const demo = useDemo();
+	const isBare = useMatches().some(({ handle }) => (handle as { bare?: boolean } | undefined)?.bare);
 	return (
 		<html lang={i18n.language} dir={i18n.dir()} data-demo={demo ? "yes" : undefined}>
 			<head>
@@ -61,8 +62,9 @@ export function Layout({ children }: { children: ReactNode }) {
 			</head>
 			<body className="ruled">
 				{children}
-				<ScrollRestoration />
-				<Scripts />
+				{/* Pages that say so go by forms and links alone, where every kilobyte is waited for. */}
+				{!isBare && <ScrollRestoration />}
+				{!isBare && <Scripts />}
 			</body>
 		</html>
 	);

@@ -44,18 +44,24 @@ export function listAnswerLines(
 
 export type Difference = { questionKey: string; text: Words; mine: ShownAnswer; theirs: ShownAnswer };
 
-/** What a step would say with `mine` in place of the answers it holds, question by question where the two differ. */
+/**
+ * What a step would say with `mine` in place of the answers it holds, question by question where the two differ.
+ * @param unread what was typed for questions and could not be read, by question.
+ */
 export function listDifferences(
 	{ definition, plantings, answers }: { definition: FormDefinition; plantings: PlantingAsked[]; answers: Answer[] },
 	stepKey: string,
 	mine: Answer[],
+	unread: ReadonlyMap<string, string> = new Map(),
 ): Difference[] {
 	const step = listAllSteps(definition, plantings).find(({ key }) => key === stepKey);
 	const planting = step?.planting ?? null;
 	const [here, there] = [answersByPlace(mine), answersByPlace(answers)];
 	return (step?.screen.questions ?? []).flatMap((question) => {
 		const at = placeOf(question.key, planting?.plantingId ?? null);
-		const [one, other] = [shownAs(question, here.get(at), planting), shownAs(question, there.get(at), planting)];
+		const typed = unread.get(question.key);
+		const one = typed ? ({ kind: "text", text: typed } as const) : shownAs(question, here.get(at), planting);
+		const other = shownAs(question, there.get(at), planting);
 		const same = JSON.stringify(one) === JSON.stringify(other);
 		return same ? [] : [{ questionKey: question.key, text: question.label ?? question.text, mine: one, theirs: other }];
 	});

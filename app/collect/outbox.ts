@@ -39,6 +39,9 @@ export type Outbox = {
 };
 export type KeptAnswer = { kept: boolean; version: number; unread: string[] };
 
+/** As many as the server takes. One left out could at worst be taken for another device's change. */
+const mostUnsure = 90;
+
 export const emptyOutbox: Outbox = { steps: {}, count: 0, sendIn: false };
 
 export function typedStep(outbox: Outbox, stepKey: string): TypedStep | undefined {
@@ -67,7 +70,7 @@ export function type(
 		order: outbox.count + 1,
 		sent: false,
 		goneOn: false,
-		unsure: isOwn ? [...before.unsure, ...(before.sent ? [before.changeId] : [])] : [],
+		unsure: isOwn ? [...before.unsure, ...(before.sent ? [before.changeId] : [])].slice(-mostUnsure) : [],
 		state: "waiting",
 		unread: [],
 	};

@@ -88,10 +88,15 @@ test("without scripts, going on with what another device has changed shows both 
 
 test("what needs mending keeps the version it was typed upon", async () => {
 	const { visitor, keep, ask } = await begun();
-	await visitor.post(keep, typed("50"));
 	const wrong = await visitor.post(ask, typed("a lot"));
 	expect(wrong.status).toBe(400);
 	expect(wrong.text).toMatch(/name="_seen" value="0"/);
+	// Before anything is mended it is said that there are other answers, with what was typed as it was typed.
+	await visitor.post(keep, typed("50"));
+	const both = await visitor.post(ask, typed("a lot"));
+	expect(both.status).toBe(409);
+	expect(both.text).toMatch(/Here:.{0,200}a lot.{0,200}On the other device:.{0,40}50/s);
+	expect((await visitor.post(ask, typed("a lot", { _seen: "1" }))).status).toBe(400);
 });
 
 test("whoever may not answer keeps nothing, and forged changes are refused", async () => {

@@ -12,6 +12,8 @@ import { type Language, wordsIn } from "#app/i18n/language.ts";
 import { getLanguage, languageCookie } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
 
+export const handle = { bare: true };
+
 /** Looks only, for mail scanners open links too; a forwarded link shows no whole name. */
 export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const link = await scopedTransaction({ kind: "network" }, (trx) => findLink(trx, params.token));

@@ -84,6 +84,7 @@ function SurveyState({ survey }: { survey: Operation["surveys"][number] }) {
 					<ButtonLink
 						kind={submittedAt ? "secondary" : "primary"}
 						to={href("/answer/:surveyId/:operationId", { surveyId, operationId })}
+						reloadDocument
 					>
 						{t(submittedAt ? "home.change" : withdrawnAt ? "home.again" : begun ? "grower:start.goOn" : "home.answer")}
 					</ButtonLink>

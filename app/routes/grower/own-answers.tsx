@@ -57,7 +57,7 @@ export default function OwnAnswers({ loaderData: answers, params }: Route.Compon
 			/>
 			{isOpen && (
 				<div className="no-print mt-6">
-					<ButtonLink kind="secondary" to={href("/answer/:surveyId/:operationId", params)}>
+					<ButtonLink kind="secondary" to={href("/answer/:surveyId/:operationId", params)} reloadDocument>
 						{t(withdrawnAt ? "home.again" : "answers.change")}
 					</ButtonLink>
 				</div>

@@ -8,7 +8,10 @@ import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { getAnswering } from "./parts/answering.server.ts";
+import { getAnswering, phonePart } from "./parts/answering.server.ts";
+import { PhonePart } from "./parts/phone-part.tsx";
+
+export const handle = { bare: true };
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const answering = await getAnswering(context, params);
@@ -24,6 +27,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		closesAt: answering.closesAt,
 		timeZone: answering.timeZone,
 		groups: listAnswerLines(definition, plantings, answers),
+		phone: phonePart(answering, response),
 	};
 }
 
@@ -56,6 +60,7 @@ export default function Receipt({ loaderData, params }: Route.ComponentProps) {
 				</div>
 				<AnswerList groups={groups} />
 			</Section>
+			<PhonePart {...loaderData.phone} stage="receipt" />
 		</Page>
 	);
 }

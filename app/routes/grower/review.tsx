@@ -12,8 +12,12 @@ import { Page } from "#app/components/page.tsx";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { getAnswering } from "./parts/answering.server.ts";
+import { getAnswering, phonePart } from "./parts/answering.server.ts";
+import { KeptWord, PhonePart } from "./parts/phone-part.tsx";
 import { useStepTitle } from "./parts/step-title.ts";
+
+/** As on a screen: forms, links and one small script. */
+export const handle = { bare: true };
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const answering = await getAnswering(context, params);
@@ -27,6 +31,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		timeZone: answering.timeZone,
 		sent: response.receiptCode !== null,
 		changed: response.changedSinceSubmission,
+		phone: phonePart(answering, response),
 	};
 }
 
@@ -45,7 +50,8 @@ export default function Review({ loaderData, actionData, params }: Route.Compone
 	const { t } = useTranslation("grower");
 	const format = useFormat();
 	const busy = useNavigation().state === "submitting";
-	const { groups, closesAt, timeZone, sent, changed } = loaderData;
+	const titleOf = useStepTitle();
+	const { groups, steps, closesAt, timeZone, sent, changed } = loaderData;
 	const askAddress = (screen: string) =>
 		`${href("/answer/:surveyId/:operationId/ask/:screen", { ...params, screen })}?review`;
 	return (
@@ -54,10 +60,16 @@ export default function Review({ loaderData, actionData, params }: Route.Compone
 			{sent && !changed && <Notice tone="info">{t("review.alreadySent")}</Notice>}
 			{sent && changed && <Notice tone="attention">{t("review.changedNotSent")}</Notice>}
 			<AnswerList groups={groups} editHref={askAddress} />
-			<Form method="post" className="mt-8">
+			<Form method="post" className="mt-8" data-answering="">
 				<p className="mb-4">{t("review.until", { closes: format.moment(closesAt, timeZone) })}</p>
 				<Button busy={busy}>{t(sent ? "review.sendChanges" : "review.send")}</Button>
+				<KeptWord />
 			</Form>
+			<PhonePart
+				{...loaderData.phone}
+				stage="review"
+				labels={Object.fromEntries(steps.map((step) => [step.key, titleOf(step)]))}
+			/>
 		</Page>
 	);
 }

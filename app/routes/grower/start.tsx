@@ -14,13 +14,17 @@ import { wordsIn } from "#app/i18n/language.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { getAnswering } from "./parts/answering.server.ts";
+import { getAnswering, phonePart } from "./parts/answering.server.ts";
+import { PhonePart } from "./parts/phone-part.tsx";
 import { Pledge } from "./parts/pledge.tsx";
+
+export const handle = { bare: true };
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const answering = await getAnswering(context, params);
 	const { definition, plantings, answers, response } = answering;
 	return {
+		phone: response && phonePart(answering, response),
 		title: answering.title,
 		season: answering.season,
 		operationName: answering.operationName,
@@ -90,6 +94,7 @@ export default function Start({ loaderData, params }: Route.ComponentProps) {
 					<Button>{t("start.begin")}</Button>
 				</Form>
 			)}
+			{loaderData.phone && <PhonePart {...loaderData.phone} stage="start" />}
 		</Page>
 	);
 }

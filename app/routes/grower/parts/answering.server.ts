@@ -1,20 +1,36 @@
+import { createHash } from "node:crypto";
 import type { RouterContextProvider } from "react-router";
 import { requireGrower } from "#app/auth/guard.server.ts";
-import { type Answering, findAnswering } from "#app/collect/responses.server.ts";
+import { type Answering, findAnswering, type ResponseSoFar } from "#app/collect/responses.server.ts";
+import type { Grower } from "#app/auth/viewer.ts";
 import { refusal } from "#app/lib/refusal.ts";
 
+/** `holder` is whose session it is, as a short hash. */
+export type OpenAnswering = Answering & { holder: string };
 export type Place = { surveyId: string; operationId: string };
 
 /**
  * The survey that somebody may answer now, with what was answered so far.
  * @throws refusal 401 or 404 for who may not, 410 when it is closed.
  */
-export async function getAnswering(context: Readonly<RouterContextProvider>, place: Place): Promise<Answering> {
+export async function getAnswering(context: Readonly<RouterContextProvider>, place: Place): Promise<OpenAnswering> {
 	const grower = requireGrower(context, place);
 	const answering = await grower.transaction((trx) => findAnswering(trx, grower.viewer, place));
 	if (!answering) throw refusal("survey_not_found");
 	if (!answering.isOpen) throw refusal("survey_closed");
-	return answering;
+	return { ...answering, holder: holderOf(grower.viewer) };
+}
+
+/** Tells sessions of one person or link from those of another, and nothing else. */
+function holderOf({ link, person }: Grower): string {
+	const who = link ? `link ${link.personalLinkId}` : `person ${person?.personId}`;
+	return createHash("sha256").update(who).digest("base64url").slice(0, 16);
+}
+
+/** What a page tells the phone of a response that was begun. */
+export function phonePart(answering: OpenAnswering, response: ResponseSoFar) {
+	const { surveyId, operationId, holder } = answering;
+	return { surveyId, operationId, holder, responseId: response.responseId, changes: response.stepChanges };
 }
 
 /** The day it is at the operation, for answers that must not lie in the future. */

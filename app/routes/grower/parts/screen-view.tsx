@@ -1,0 +1,108 @@
+import { useEffect, useRef } from "react";
+import { useTranslation } from "react-i18next";
+import { Form, href, Link, useNavigation } from "react-router";
+import type { Difference } from "#app/collect/answer-lines.ts";
+import type { Question } from "#app/collect/form.ts";
+import type { StepValues } from "#app/collect/posted.ts";
+import type { ShownStep } from "#app/collect/show-step.ts";
+import { Button } from "#app/components/button.tsx";
+import { ErrorSummary } from "#app/components/error-summary.tsx";
+import { Page } from "#app/components/page.tsx";
+import { TallyStrokes } from "#app/components/tally-strokes.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
+import type { Problem } from "#app/lib/parse-form.ts";
+import { ChangedElsewhere } from "./changed-elsewhere.tsx";
+import { CheckNotice } from "./check-notice.tsx";
+import { KeptWord, PhonePart, type PhonePage } from "./phone-part.tsx";
+import { labelOf, QuestionField } from "./question-field.tsx";
+import { useStepTitle } from "./step-title.ts";
+import { ScreenUnknown } from "./unknown-boxes.tsx";
+
+type AnswerPlace = { surveyId: string; operationId: string };
+export type PostedScreen = {
+	values: StepValues;
+	questions: Question[];
+	problems: Problem[];
+	/** The version of the step upon which it was typed. */
+	seen: number | undefined;
+	/** Where another device has changed the step since, in what the two differ. */
+	elsewhere: Difference[] | null;
+};
+type ScreenViewProps = {
+	shown: ShownStep;
+	/** What was posted and not kept, with why. */
+	posted: PostedScreen | undefined;
+	place: AnswerPlace;
+	phone: Omit<PhonePage, "stage" | "stepKey">;
+};
+
+/** One screen of a survey: its questions, what is to be mended, and the way on and back. */
+export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
+	const { t, i18n } = useTranslation("grower");
+	const format = useFormat();
+	const busy = useNavigation().state === "submitting";
+	const { step, number, of, previous } = shown;
+	const { questions, values, problems } = posted ?? shown;
+	const elsewhere = posted?.elsewhere;
+	const title = useStepTitle()(step);
+	const help = step.screen.help && wordsIn(step.screen.help, i18n.language);
+	const shared = new Set(step.screen.sumToHundred ?? []);
+	const labels = Object.fromEntries(
+		questions.flatMap((question) => [
+			[question.key, labelOf(question, i18n.language)],
+			[`${question.key}_crate`, t("screen.crateWeight")],
+		]),
+	);
+	useFocusOnArrival(step.key);
+	return (
+		<Page title={title} lead={help}>
+			<div className="-mt-4 mb-6 flex items-center gap-3 text-base text-quiet">
+				<TallyStrokes done={number - 1} all={of} />
+				<span>{t("screen.progress", { number: format.number(number), of: format.number(of) })}</span>
+			</div>
+			<ErrorSummary problems={problems} labels={labels} />
+			{/* A screen of its own: boxes of one step must not carry their text into the next. */}
+			<Form key={step.key} method="post" noValidate data-answering="" data-both={elsewhere ? "" : undefined}>
+				<input type="hidden" name="_seen" value={posted?.seen ?? shown.version} />
+				{elsewhere && <ChangedElsewhere lines={elsewhere} />}
+				{!posted && <CheckNotice checks={shown.checks} busy={busy} />}
+				{questions.map((question) => (
+					<QuestionField
+						key={question.key}
+						question={question}
+						planting={step.planting}
+						values={values}
+						mayNotKnow={!shared.has(question.key)}
+						problems={problems}
+					/>
+				))}
+				{shared.size > 0 && <ScreenUnknown values={values} />}
+				<div className="mt-8 flex flex-wrap items-center gap-4">
+					<Button busy={busy}>{t(elsewhere ? "elsewhere.mine" : "common:button.continue")}</Button>
+					<Link to={backAddress(place, previous)} className="inline-flex min-h-11 items-center">
+						{t("common:button.back")}
+					</Link>
+				</div>
+				<KeptWord />
+			</Form>
+			<PhonePart {...phone} stage="ask" stepKey={step.key} labels={labels} />
+		</Page>
+	);
+}
+
+function backAddress(place: AnswerPlace, previous: string | null): string {
+	return previous
+		? href("/answer/:surveyId/:operationId/ask/:screen", { ...place, screen: previous })
+		: href("/answer/:surveyId/:operationId", place);
+}
+
+/** A new screen begins at its heading, also for whoever cannot see that it changed. */
+function useFocusOnArrival(key: string) {
+	const shown = useRef(key);
+	useEffect(() => {
+		if (shown.current === key) return;
+		shown.current = key;
+		document.getElementById("content")?.focus();
+	}, [key]);
+}

@@ -1,0 +1,41 @@
+import { listUnsettled, nextToSend, settle } from "#app/collect/outbox.ts";
+import type { PageData } from "./page-data.ts";
+import { change, sendWaiting } from "./send.ts";
+import type { PhoneStore } from "./store.ts";
+
+/** The page shows what the server has: what the phone still holds is sent first, and named where it cannot be. */
+export async function startReviewPage(store: PhoneStore, page: PageData, form: HTMLFormElement): Promise<void> {
+	const held = await change(store, page.responseId, (outbox) => settle(outbox, page.changes));
+	const hadMore = held !== undefined && nextToSend(held.outbox) !== undefined;
+	form.addEventListener("submit", (event) => void sendIn(store, page, event));
+	if (!hadMore) {
+		await sayUnsettled(store, page);
+		return;
+	}
+	const outcome = await sendWaiting(store, page.responseId, () => {});
+	if (outcome === "sent") location.reload();
+	else await sayUnsettled(store, page);
+}
+
+/** Sends the answers in when all that was typed is among them. */
+async function sendIn(store: PhoneStore, page: PageData, event: SubmitEvent): Promise<void> {
+	event.preventDefault();
+	const { target, submitter } = event;
+	if (submitter?.getAttribute("aria-disabled") === "true") return;
+	submitter?.setAttribute("aria-disabled", "true");
+	await sendWaiting(store, page.responseId, () => {});
+	if (await sayUnsettled(store, page)) submitter?.removeAttribute("aria-disabled");
+	else (target as HTMLFormElement).submit();
+}
+
+/** Names the screens whose newest answers are on this phone only. @returns whether there are any. */
+async function sayUnsettled(store: PhoneStore, page: PageData): Promise<boolean> {
+	const held = await store.read(page.responseId);
+	const unsettled = held ? listUnsettled(held.outbox) : [];
+	const place = document.getElementById("kept-word");
+	if (place) {
+		const names = unsettled.map((key) => page.labels[key] ?? key).join("; ");
+		place.textContent = unsettled.length > 0 ? page.words.unsent.replace("{{names}}", names) : "";
+	}
+	return unsettled.length > 0;
+}

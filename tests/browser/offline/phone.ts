@@ -1,0 +1,52 @@
+import type { Browser, BrowserContext, Page } from "playwright-core";
+import type { Client } from "pg";
+import { scopedTransaction } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
+import { createPersonalLink } from "#app/collect/personal-link.server.ts";
+import { askGrower } from "#tests/database/answering-fixture.ts";
+import { openPage, phone } from "#tests/helpers/browser.ts";
+
+/** A grower who is asked by a survey of its own and has begun, with the addresses of its pages. */
+export async function askByLink(owner: Client, associate: Associate, baseUrl: string) {
+	const { place, step, grower } = await askGrower(owner, associate);
+	const expiresAt = new Date(Date.now() + 86_400_000);
+	const link = async () => {
+		const token = await scopedTransaction({ kind: "network" }, (trx) =>
+			createPersonalLink(trx, { ...place, expiresAt }),
+		);
+		return `${baseUrl}/r/${token}`;
+	};
+	const address = `${baseUrl}/answer/${place.surveyId}/${place.operationId}`;
+	return { place, grower, step, link, address, ask: `${address}/ask/${step}` };
+}
+export type Asked = Awaited<ReturnType<typeof askByLink>>;
+
+/** A phone of the grower's own on which the link has been opened. */
+export async function openPhone(browser: Browser, asked: Asked, options: { language?: string } = {}) {
+	const page = await openPage(browser, { ...phone, ...options });
+	await page.goto(await asked.link());
+	await page.locator("form button").last().click();
+	await page.waitForURL(`${asked.address}`);
+	await page.goto(asked.ask);
+	return page;
+}
+
+/** Another window of the same phone, with the same cookies and store. */
+export async function openWindow(context: BrowserContext, address: string): Promise<Page> {
+	const page = await context.newPage();
+	page.setDefaultTimeout(30_000);
+	await page.goto(address);
+	return page;
+}
+
+export const word = (page: Page) => page.locator("#kept-word");
+
+/** What the server holds of a survey, by question. */
+export async function heldByServer(owner: Client, surveyId: string): Promise<Record<string, unknown>> {
+	const { rows } = await owner.query(
+		`select question_key, kind, value from collect.answer join collect.response using (response_id)
+		where survey_id = $1`,
+		[surveyId],
+	);
+	return Object.fromEntries(rows.map(({ question_key: key, kind, value }) => [key, value ?? kind]));
+}
