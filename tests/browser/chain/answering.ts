@@ -68,6 +68,8 @@ export async function answerByHand(
 	await next();
 
 	await page.getByRole("button", { name: words.send }).waitFor();
+	// A phone that still had something to send shows the page anew once it is sent.
+	await page.waitForLoadState("networkidle");
 	await accessible();
 	await page.getByRole("button", { name: words.send }).click();
 	await page.getByRole("heading", { name: words.thanks }).waitFor();

@@ -1,7 +1,8 @@
 import { listUnsettled, nextToSend, settle } from "#app/collect/outbox.ts";
+import { versionOf } from "#app/collect/step-change.ts";
 import type { PageData } from "./page-data.ts";
 import { change, sendWaiting } from "./send.ts";
-import type { PhoneStore } from "./store.ts";
+import type { Held, PhoneStore } from "./store.ts";
 
 /** The page shows what the server has: what the phone still holds is sent first, and named where it cannot be. */
 export async function startReviewPage(store: PhoneStore, page: PageData, form: HTMLFormElement): Promise<void> {
@@ -13,8 +14,13 @@ export async function startReviewPage(store: PhoneStore, page: PageData, form: H
 		return;
 	}
 	const outcome = await sendWaiting(store, page.responseId, () => {});
-	if (outcome === "sent") location.reload();
+	if (outcome === "sent" && hasNews(await store.read(page.responseId), page)) location.reload();
 	else await sayUnsettled(store, page);
+}
+
+/** Whether the server took something that the page does not show yet; a screen that was passed by holds nothing new. */
+function hasNews(held: Held | undefined, { changes }: PageData): boolean {
+	return Object.entries(held?.outbox.steps ?? {}).some(([key, step]) => step.seen > versionOf(changes, key));
 }
 
 /** Sends the answers in when all that was typed is among them. */
