@@ -54,6 +54,7 @@ export default [
 					route("plantings/:plantingId", "routes/grower/planting.tsx"),
 					route("place", "routes/grower/place.tsx"),
 					route("settings", "routes/grower/settings.tsx"),
+					route("leave", "routes/grower/leave.tsx"),
 				]),
 			]),
 		]),

@@ -41,6 +41,7 @@ export interface AuthPerson {
   created_at: Generated<Timestamp>;
   display_name: string;
   email: string | null;
+  forgotten_at: Timestamp | null;
   issuer: string;
   language: string | null;
   person_id: Generated<string>;
@@ -263,6 +264,7 @@ export interface DirectoryOperation {
   created_at: Generated<Timestamp>;
   email: string | null;
   language: Generated<string>;
+  left_at: Timestamp | null;
   mail_wanted: Generated<boolean>;
   mass_unit: Generated<string>;
   name: string;

@@ -25,6 +25,7 @@ export async function listPeople(trx: Trx, _viewer: Coordinator) {
 	const people = await trx
 		.selectFrom("auth.person")
 		.select(["person_id as personId", "display_name as displayName", "email"])
+		.where("forgotten_at", "is", null)
 		.orderBy("display_name")
 		.orderBy("person_id")
 		.execute();

@@ -24,6 +24,8 @@ export async function findPlace(trx: Trx, viewer: Grower, { surveyId, operationI
 		.where("s.survey_id", "=", surveyId)
 		.where("f.operation_id", "=", operationId)
 		.where("s.opened_at", "is not", null)
+		// Whoever left while an answer was on its way is asked no more.
+		.where("o.status", "=", "active")
 		.select([
 			"s.season",
 			sql<Words>`s.title`.as("title"),

@@ -93,7 +93,7 @@ function matchingFrame(trx: Trx, viewer: Associate, surveyId: string, { q, show 
 		)
 		.$if(show === "answered", (rows) => rows.where("r.submitted_at", "is not", null))
 		.$if(show === "not_answered" || show === "no_address", (rows) => rows.where("r.submitted_at", "is", null))
-		.$if(show === "no_address", (rows) => rows.where(sql<boolean>`coalesce(o.email, '') = ''`))
+		.$if(show === "no_address", (rows) => rows.where(sql<boolean>`coalesce(o.email, '') = '' and o.left_at is null`))
 		.$if(show === "mail_returned", (rows) =>
 			rows.where(sql<boolean>`(select m.failure from collect.mailing m
 			where m.survey_id = f.survey_id and m.operation_id = f.operation_id

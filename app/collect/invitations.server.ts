@@ -23,7 +23,9 @@ export async function countMailings(trx: Trx, viewer: Associate, surveyId: strin
 			sql<number>`count(*) filter (where ${invited} = 0 and ${awaited})`.as("toInvite"),
 			sql<number>`count(*) filter (where ${invited} > 0 and ${awaited})`.as("toRemind"),
 			sql<number>`count(*) filter (where ${invited} > 0)`.as("invited"),
-			sql<number>`count(*) filter (where coalesce(o.email, '') = '' and not ${answered})`.as("withoutAddress"),
+			sql<number>`count(*) filter (where coalesce(o.email, '') = '' and o.left_at is null and not ${answered})`.as(
+				"withoutAddress",
+			),
 		])
 		.executeTakeFirstOrThrow();
 	return { ...row, reminderWave: (await lastWave(trx, surveyId, "reminder")) + 1 };

@@ -10,6 +10,7 @@ export async function listOrchard(trx: Trx, viewer: Grower) {
 		.innerJoin("directory.county as c", "c.county_fips", "o.county_fips")
 		.innerJoin("directory.state as s", "s.state_fips", "o.state_fips")
 		.where("o.operation_id", "in", viewer.operationIds)
+		.where("o.status", "=", "active")
 		.select([
 			"o.operation_id as operationId",
 			"o.name",

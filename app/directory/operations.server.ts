@@ -40,7 +40,8 @@ function selectOperations(trx: Trx, viewer: Associate) {
 /** A page of operations. Equal sort values are ordered by id, so that no row shows twice or never while paging. */
 export async function listOperations(trx: Trx, viewer: Associate, query: OperationQuery): Promise<OperationPage> {
 	const { q, stateFips, cropKey, sort, direction } = query;
-	let matching = selectOperations(trx, viewer);
+	// Who has left and was forgotten has no name to be found by.
+	let matching = selectOperations(trx, viewer).where("o.left_at", "is", null);
 	if (stateFips) matching = matching.where("o.state_fips", "=", stateFips);
 	if (q) {
 		const pattern = `%${q.replace(/[\\%_]/g, String.raw`\$&`)}%`;

@@ -14,6 +14,7 @@ import { StatusBadge } from "#app/components/status-badge.tsx";
 import { findOperation } from "#app/directory/operations.server.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import { useGrowerName } from "./parts/grower-name.ts";
 import { PlantingTable } from "./parts/planting-table.tsx";
 import { SurveysOfGrower } from "./parts/surveys-of-grower.tsx";
 
@@ -46,8 +47,9 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 export default function GrowerPage({ loaderData, actionData }: Route.ComponentProps) {
 	const { operation, surveys } = loaderData;
 	const { t } = useTranslation("desk");
+	const nameOf = useGrowerName();
 	return (
-		<Page title={operation.name}>
+		<Page title={nameOf(operation.name)}>
 			<p className="no-print mb-4">
 				<Link to={href("/desk/growers")}>{t("grower.back")}</Link>
 			</p>

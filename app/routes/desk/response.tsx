@@ -11,6 +11,7 @@ import { EmptyState } from "#app/components/empty-state.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import { useGrowerName } from "./parts/grower-name.ts";
 
 const Version = z.coerce.number().int().optional().catch(undefined);
 
@@ -29,7 +30,8 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 export default function ResponsePage({ loaderData: response, params }: Route.ComponentProps) {
 	const { t } = useTranslation("desk");
 	const format = useFormat();
-	const { operationId, operationName, timeZone } = response;
+	const { operationId, timeZone } = response;
+	const operationName = useGrowerName()(response.operationName);
 	return (
 		<>
 			<p className="no-print">

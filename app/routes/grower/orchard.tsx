@@ -147,7 +147,7 @@ function Directory({ operation }: { operation: Operation }) {
 				]}
 			/>
 			<ul className="no-print mt-3">
-				{(["plantings", "place", "settings"] as const).map((page) => (
+				{(["plantings", "place", "settings", "leave"] as const).map((page) => (
 					<li key={page}>
 						<Link
 							to={href(`/orchard/:operationId/${page}`, { operationId })}

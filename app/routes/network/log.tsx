@@ -55,12 +55,14 @@ export default function Log({ loaderData }: Route.ComponentProps) {
 	);
 }
 
-function Who({ event: { person, told } }: { event: LoggedEvent }) {
+function Who({ event: { person, told, action } }: { event: LoggedEvent }) {
 	const { t } = useTranslation("network");
+	// Whoever leaves is not named, not even in the log of it.
+	if (!person && (action === "operation.left" || action === "response.withdrawn")) return t("log.forgotten");
 	if (!person) return <span className="text-quiet">{t(told.byLink ? "log.byLink" : "log.nobody")}</span>;
 	return (
 		<>
-			{person.name}
+			{person.name || t("log.forgotten")}
 			<span className="block text-xs text-quiet">{person.email}</span>
 		</>
 	);
@@ -82,7 +84,7 @@ function About({ event }: { event: LoggedEvent }) {
 	const role = told.role && t(`common:role.${told.role}`);
 	const ofGrower = /^(response|operation)\./.test(action) || action === "survey.link_replaced";
 	const lines = [
-		about !== person?.name && about,
+		about !== person?.name && about !== "" && about,
 		role && (state ? t("people.roleIn", { role, state }) : role),
 		survey && t("log.survey", { title: wordsIn(survey.title, i18n.language), season: survey.season }),
 		ofGrower && state && t("log.grower", { state }),

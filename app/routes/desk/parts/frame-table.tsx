@@ -6,6 +6,7 @@ import { EmptyState } from "#app/components/empty-state.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { AnsweredLink } from "./answered-link.tsx";
+import { useGrowerName } from "./grower-name.ts";
 import { MailState } from "./mail-state.tsx";
 
 export const dispositionTones = {
@@ -29,6 +30,7 @@ type FrameTableProps = {
 /** Growers of a survey's frame: whom to ring, what came back, and how their mails stand. */
 export function FrameTable({ rows, sort, caption, surveyId, timeZone, empty }: FrameTableProps) {
 	const { t } = useTranslation("desk");
+	const nameOf = useGrowerName();
 	return (
 		<DataTable
 			caption={caption}
@@ -58,7 +60,7 @@ export function FrameTable({ rows, sort, caption, surveyId, timeZone, empty }: F
 					key: "answered",
 					header: t("responses.answered"),
 					sortable: true,
-					cell: (row) => <AnsweredLink {...row} surveyId={surveyId} of={row.name} timeZone={timeZone} />,
+					cell: (row) => <AnsweredLink {...row} surveyId={surveyId} of={nameOf(row.name)} timeZone={timeZone} />,
 				},
 				{ key: "mails", header: t("responses.mails"), cell: (row) => <LastMail row={row} timeZone={timeZone} /> },
 			]}
@@ -69,10 +71,11 @@ export function FrameTable({ rows, sort, caption, surveyId, timeZone, empty }: F
 
 /** With telephone number, since this is the list one rings from. */
 function Grower({ row: { operationId, name, contactName, phone } }: { row: FrameRow }) {
+	const nameOf = useGrowerName();
 	return (
 		<>
 			<Link to={href("/desk/growers/:operationId", { operationId })} className="print-plain">
-				{name}
+				{nameOf(name)}
 			</Link>
 			<span className="block text-xs text-quiet">{[contactName, phone].filter(Boolean).join(" · ")}</span>
 		</>

@@ -1,0 +1,78 @@
+import { randomUUID } from "node:crypto";
+import { sql } from "kysely";
+import { logEvent } from "#app/auth/event-log.server.ts";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Grower } from "#app/auth/viewer.ts";
+import { findOwnOperation } from "./own-operation.server.ts";
+
+/**
+ * Takes a leaving grower's own operation for the transaction, so that leaving twice at once happens once.
+ * @returns undefined when it is not the viewer's, or has left.
+ */
+export async function lockOwnOperation(trx: Trx, viewer: Grower, operationId: string) {
+	if (!(await findOwnOperation(trx, viewer, operationId))) return undefined;
+	await trx
+		.selectFrom("directory.operation")
+		.select("operation_id")
+		.where("operation_id", "=", operationId)
+		.forUpdate()
+		.execute();
+	return findOwnOperation(trx, viewer, operationId);
+}
+
+/** Blanks what is written down about an operation and marks it as having left. County, crops and counts of plants stay. */
+export async function forgetOperation(
+	trx: Trx,
+	{ operationId, stateFips }: { operationId: string; stateFips: string },
+) {
+	await trx.deleteFrom("directory.operation_pin").where("operation_id", "=", operationId).execute();
+	await trx
+		.updateTable("directory.planting")
+		.set({ cultivar: "", area_acres: null, planted_year: null })
+		.where("operation_id", "=", operationId)
+		.execute();
+	await trx
+		.updateTable("directory.operation")
+		.set({ name: "", contact_name: "", email: null, phone: null, mail_wanted: false })
+		.set({ status: "left", left_at: sql`now()`, updated_at: sql`now()` })
+		.where("operation_id", "=", operationId)
+		.execute();
+	await logEvent(trx, {
+		personId: null,
+		action: "operation.left",
+		subjectKind: "operation",
+		subjectId: operationId,
+		stateFips,
+	});
+}
+
+/**
+ * Forgets the owner of an operation that has left. An owner who goes on with other operations keeps the name for these,
+ * and this one gets an owner without.
+ * @param trx under scope `network`: owners are nobody's own to write.
+ */
+export async function forgetOwner(trx: Trx, operationId: string): Promise<void> {
+	const { owner_id: ownerId } = await trx
+		.selectFrom("directory.operation")
+		.select("owner_id")
+		.where("operation_id", "=", operationId)
+		.executeTakeFirstOrThrow();
+	const others = await trx
+		.selectFrom("directory.operation")
+		.select("operation_id")
+		.where("owner_id", "=", ownerId)
+		.where("status", "=", "active")
+		.limit(1)
+		.execute();
+	if (others.length === 0) {
+		await trx.updateTable("directory.owner").set({ name: "" }).where("owner_id", "=", ownerId).execute();
+		return;
+	}
+	const nameless = randomUUID();
+	await trx.insertInto("directory.owner").values({ owner_id: nameless, name: "" }).execute();
+	await trx
+		.updateTable("directory.operation")
+		.set({ owner_id: nameless })
+		.where("operation_id", "=", operationId)
+		.execute();
+}
