@@ -26,6 +26,8 @@ export const Condition: z.ZodType<Condition> = z.lazy(() =>
 	]),
 );
 
+/** What to do while the answers do not decide a condition: it is asked, unless the form says to skip it. */
+const WhenUnsure = z.enum(["ask", "skip"]).optional();
 const questionBase = {
 	key: Key,
 	text: Words,
@@ -35,6 +37,7 @@ const questionBase = {
 	required: z.boolean(),
 	/** Only asked when this holds; what a condition hides is kept while editing and left out at submission. */
 	condition: Condition.optional(),
+	whenUnsure: WhenUnsure,
 	/** A cell in which everybody gives one answer to a sensitive question is withheld. */
 	sensitive: z.boolean().default(false),
 };
@@ -108,6 +111,7 @@ export const Screen = z.object({
 	sumToHundred: z.array(Key).optional(),
 	checks: z.array(Check).optional(),
 	condition: Condition.optional(),
+	whenUnsure: WhenUnsure,
 });
 export type Screen = z.infer<typeof Screen>;
 

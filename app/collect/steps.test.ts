@@ -119,6 +119,15 @@ describe("conditions on single questions", () => {
 		const [, second] = listSteps(form, one, [given("seen", "yes")]);
 		expect(questionsAsked(second!, form, one, [given("seen", "no")])).toEqual([]);
 	});
+	test("what is to be skipped while nothing is sure waits for the answer that asks for it", () => {
+		const later = { ...choice("spread", ifYes("seen")), whenUnsure: "skip" as const };
+		const screens = form.screens.with(1, { ...form.screens[1]!, questions: [later] });
+		const keys = (answers: Answer[]) => listSteps({ ...form, screens }, one, answers).map(({ key }) => key);
+		expect(keys([])).not.toContain("second");
+		const silent: Answer = { questionKey: "seen", plantingId: null, kind: "dont_know", value: null, given: null };
+		expect(keys([silent])).not.toContain("second");
+		expect(keys([given("seen", "yes")])).toContain("second");
+	});
 	test("a planting is offered the options of its crop, and asked nothing where none is left", () => {
 		const option = (key: string, more = {}) => ({ key, text: words, ...more });
 		const seen: Question = {

@@ -1,4 +1,4 @@
-import { evaluate, type Condition, type Known } from "#app/lib/condition.ts";
+import { evaluate, type Known } from "#app/lib/condition.ts";
 import type { Answer, FormDefinition, Question, Screen } from "./form.ts";
 
 export type PlantingAsked = {
@@ -19,7 +19,7 @@ export type Asking = { definition: FormDefinition; plantings: PlantingAsked[]; a
 
 /**
  * The steps that are asked, given the answers so far. What a condition rules out is left out; where the answers do not
- * decide it yet, it stays. A planting table takes one step a planting, and none where there is no planting.
+ * decide it yet, it stays, unless the form says to skip it then. A planting table takes one step a planting, and none where there is no planting.
  */
 export function listSteps(definition: FormDefinition, plantings: PlantingAsked[], answers: Answer[]): Step[] {
 	return listAsked(definition, plantings, answers).map(({ step }) => step);
@@ -55,12 +55,12 @@ export function listAsked(definition: FormDefinition, plantings: PlantingAsked[]
 		rows: plantings.map((row) => (key: string) => value(key, row.plantingId)),
 	});
 	return listAllSteps(definition, plantings).flatMap((step) => {
-		const asks = (condition: Condition | undefined) =>
-			condition === undefined || evaluate(condition, known(step.planting)) !== false;
-		const wholeScreen = asks(step.screen.condition);
+		const asks = ({ condition, whenUnsure }: Pick<Screen, "condition" | "whenUnsure">) =>
+			condition === undefined || (evaluate(condition, known(step.planting)) ?? whenUnsure !== "skip");
+		const wholeScreen = asks(step.screen);
 		const questions = step.screen.questions.filter((question) => {
 			// Photos are not taken yet: asking for one would leave a step that nobody can finish.
-			if (question.type !== "photo" && wholeScreen && asks(question.condition)) return true;
+			if (question.type !== "photo" && wholeScreen && asks(question)) return true;
 			seen.delete(placeOf(question.key, step.planting?.plantingId ?? null));
 			return false;
 		});

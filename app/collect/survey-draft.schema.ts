@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { readyFormKeys } from "./forms/ready-forms.ts";
 
 const text = (most: number) => z.string({ error: "empty" }).trim().min(1, "empty").max(most, "too_long");
 const several = (of: z.ZodType<string>) =>
@@ -14,10 +15,11 @@ export type ClosingForm = z.infer<typeof ClosingForm>;
 
 /** A survey as the desk's form sends it. Whether states are granted and crops known, the writing function checks. */
 export const SurveyDraft = ClosingForm.extend({
-	formKey: z.literal("after_harvest", { error: "choice_wrong" }),
+	formKey: z.enum(readyFormKeys, { error: "choice_wrong" }),
 	season: z.coerce.number({ error: "empty" }).int("not_whole").min(2000, "season_wrong").max(2100, "season_wrong"),
-	titleEn: text(120),
-	titleEs: text(120),
+	/** Left empty, a survey is called as its form is. */
+	titleEn: z.string().trim().max(120, "too_long").optional(),
+	titleEs: z.string().trim().max(120, "too_long").optional(),
 	crops: several(z.string().max(40, "choice_wrong")),
 	states: several(z.string().max(2, "choice_wrong")),
 });

@@ -5,7 +5,7 @@ import type { Associate } from "#app/auth/viewer.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import type { Words } from "./form.ts";
-import { afterHarvest } from "./forms/after-harvest.ts";
+import { readyForms } from "./forms/ready-forms.ts";
 import { ensureForm } from "./forms.server.ts";
 import { momentIn } from "./survey-closing.ts";
 import type { ClosingForm, SurveyDraft } from "./survey-draft.schema.ts";
@@ -120,13 +120,14 @@ export async function createSurvey(trx: Trx, viewer: Associate, draft: SurveyDra
 	if ("problem" in closing) problems.push(closing.problem);
 	if (problems.length > 0 || "problem" in closing) return { problems };
 
-	const { formVersionId } = await ensureForm(trx, afterHarvest);
+	const form = readyForms[draft.formKey];
+	const { formVersionId } = await ensureForm(trx, form);
 	const survey = await trx
 		.insertInto("collect.survey")
 		.values({
 			form_version_id: formVersionId,
 			season: draft.season,
-			title: JSON.stringify({ en: draft.titleEn, es: draft.titleEs }),
+			title: JSON.stringify({ en: draft.titleEn || form.title.en, es: draft.titleEs || form.title.es }),
 			crop_keys: [...new Set(draft.crops)],
 			closes_at: closing.closesAt,
 			created_by: viewer.personId,
@@ -143,7 +144,7 @@ export async function createSurvey(trx: Trx, viewer: Associate, draft: SurveyDra
 		action: "survey.created",
 		subjectKind: "survey",
 		subjectId: surveyId,
-		detail: { season: draft.season, states: draft.states },
+		detail: { season: draft.season, states: draft.states, form: draft.formKey },
 	});
 	return { surveyId };
 }

@@ -29,7 +29,6 @@ const sameInBoth: Record<string, string> = {
 	"grower:screen.unit.acre": "the same word",
 	"grower:screen.unit.fahrenheit": "a unit's sign",
 	"grower:screen.unit.celsius": "a unit's sign",
-	"desk:surveyNew.title": "a survey has a title in either language, whatever the associate's own",
 };
 const isSameInBoth = (key: string) => Object.keys(sameInBoth).some((start) => key.startsWith(start));
 

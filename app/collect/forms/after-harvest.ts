@@ -1,5 +1,6 @@
 import type { FormDefinition, Screen } from "#app/collect/form.ts";
 import { afterHarvestMeasures } from "./after-harvest-measures.ts";
+import { noteQuestion } from "./note.ts";
 
 const causes = [
 	["freeze", "Freeze or frost", "Helada o congelación"],
@@ -183,22 +184,7 @@ export const afterHarvest: FormDefinition = {
 						{ key: "heavy", text: { en: "Heavy", es: "Muchas" } },
 					],
 				},
-				{
-					key: "comment",
-					type: "long_text",
-					text: {
-						en: "Anything your extension associate should know?",
-						es: "¿Algo que deba saber su asesor de extensión?",
-					},
-					label: { en: "Your note", es: "Su nota" },
-					help: {
-						en: "Read by your state's associates only, never published.",
-						es: "Solo lo leen los asesores de su estado; nunca se publica.",
-					},
-					required: false,
-					maxLength: 5000,
-					sensitive: false,
-				},
+				noteQuestion,
 			],
 		},
 	],

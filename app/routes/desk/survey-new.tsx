@@ -3,6 +3,7 @@ import { data, Form, href, redirect } from "react-router";
 import type { Route } from "./+types/survey-new";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
+import { readyFormKeys, readyForms } from "#app/collect/forms/ready-forms.ts";
 import { SurveyDraft } from "#app/collect/survey-draft.schema.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import { Button } from "#app/components/button.tsx";
@@ -11,11 +12,13 @@ import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Page } from "#app/components/page.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { cropKeys } from "#app/directory/crops.ts";
+import { wordsIn } from "#app/i18n/language.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 
 export function loader({ context }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
-	return { stateFips: desk.viewer.stateFips, season: new Date().getUTCFullYear() };
+	const forms = readyFormKeys.map((key) => ({ key, title: readyForms[key].title }));
+	return { stateFips: desk.viewer.stateFips, season: new Date().getUTCFullYear(), forms };
 }
 
 export async function action({ context, request }: Route.ActionArgs) {
@@ -31,8 +34,8 @@ export async function action({ context, request }: Route.ActionArgs) {
 }
 
 export default function SurveyNew({ loaderData, actionData }: Route.ComponentProps) {
-	const { t } = useTranslation("desk");
-	const { stateFips, season } = loaderData;
+	const { t, i18n } = useTranslation("desk");
+	const { stateFips, season, forms } = loaderData;
 	const values: Record<string, unknown> = actionData?.values ?? {};
 	const typed = (name: string, otherwise = "") => {
 		const value = values[name];
@@ -47,7 +50,17 @@ export default function SurveyNew({ loaderData, actionData }: Route.ComponentPro
 		defaultValue: typed(name, otherwise),
 		problem: problemOf(name),
 	});
-	const fields = ["season", "titleEn", "titleEs", "crops", "states", "closesOn", "closesAt", "timeZone"] as const;
+	const fields = [
+		"formKey",
+		"season",
+		"titleEn",
+		"titleEs",
+		"crops",
+		"states",
+		"closesOn",
+		"closesAt",
+		"timeZone",
+	] as const;
 	return (
 		<Page title={t("surveyNew.title")} lead={t("surveyNew.lead")} width="narrow">
 			<ErrorSummary
@@ -55,11 +68,18 @@ export default function SurveyNew({ loaderData, actionData }: Route.ComponentPro
 				labels={Object.fromEntries(fields.map((field) => [field, t(`surveyNew.${field}`)]))}
 			/>
 			<Form method="post" noValidate className="grid gap-6">
-				<input type="hidden" name="formKey" value="after_harvest" />
 				<input type="hidden" name="timeZone" value="America/Chicago" />
+				<ChoiceField
+					kind="select"
+					name="formKey"
+					legend={t("surveyNew.formKey")}
+					options={forms.map(({ key, title }) => ({ value: key, label: wordsIn(title, i18n.language) }))}
+					defaultValue={typed("formKey", "after_harvest")}
+					problem={problemOf("formKey")}
+				/>
 				<TextField {...text("season", String(season))} inputMode="numeric" size="short" maxLength={4} />
-				<TextField {...text("titleEn", t("surveyNew.titleEnDefault"))} maxLength={120} />
-				<TextField {...text("titleEs", t("surveyNew.titleEsDefault"))} maxLength={120} />
+				<TextField {...text("titleEn")} maxLength={120} help={t("surveyNew.titleHelp")} optional />
+				<TextField {...text("titleEs")} maxLength={120} help={t("surveyNew.titleHelp")} optional />
 				<ChoiceField
 					kind="checkbox"
 					name="crops"
