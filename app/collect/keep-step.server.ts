@@ -3,6 +3,7 @@ import type { Grower } from "#app/auth/viewer.ts";
 import type { AnswerPlace } from "./answer-place.server.ts";
 import { replaceAnswers, sameAnswers } from "./answer-rows.server.ts";
 import type { Answer } from "./form.ts";
+import { replacedBy } from "./replace-step.ts";
 import { lockAnswering } from "./responses.server.ts";
 import { afterWriting, changeOf, judgeChange, type SentChange, type StepChange } from "./step-change.ts";
 import { type AskedStep, findStep } from "./steps.ts";
@@ -40,7 +41,7 @@ export async function keepStep(
 	const asked = findStep(answering, stepKey);
 	if (!asked || !belongTo(asked, answers)) return "step_not_found";
 
-	const held = heldBy(asked, answering.answers, answers, unread);
+	const held = replacedBy(asked, answering.answers, answers, unread);
 	const newest = changeOf(response.stepChanges, stepKey);
 	const change = sent ?? { seen: newest?.version ?? 0, changeId: null, unsure: [] };
 	const verdict = judgeChange(newest, change, unread.length === 0 && sameAnswers(held, answers));
@@ -57,14 +58,6 @@ function belongTo({ step }: AskedStep, answers: Answer[]): boolean {
 	const plantingId = step.planting?.plantingId ?? null;
 	const ofScreen = new Set(step.screen.questions.map(({ key }) => key));
 	return answers.every((answer) => answer.plantingId === plantingId && ofScreen.has(answer.questionKey));
-}
-
-/** The answers that the new ones take the place of. */
-function heldBy({ step, questions }: AskedStep, all: Answer[], answers: Answer[], unread: string[]): Answer[] {
-	const plantingId = step.planting?.plantingId ?? null;
-	const replaced = new Set([...questions.map(({ key }) => key), ...answers.map(({ questionKey }) => questionKey)]);
-	for (const key of unread) replaced.delete(key);
-	return all.filter((answer) => answer.plantingId === plantingId && replaced.has(answer.questionKey));
 }
 
 async function writeChange(

@@ -3,6 +3,7 @@ import type { Answer } from "./form.ts";
 import { readPostedStep } from "./posted-step.ts";
 import { postedText, type StepValues } from "./posted.ts";
 import { readKind, readQuestion, type ReadSettings } from "./read-question.ts";
+import { withStep } from "./replace-step.ts";
 import { screenKind, sharesOf, withSharedCrate } from "./step-fields.ts";
 import { type Asking, type AskedStep, findStep } from "./steps.ts";
 
@@ -20,12 +21,21 @@ export function readWell(
 	values: StepValues,
 	settings: ReadSettings,
 ): ReadWell | undefined {
-	const whole = readPostedStep(asking, stepKey, values, settings);
+	const { confirm, ...unconfirmed } = values;
+	const known = confirm === undefined ? asking : asAsked(asking, stepKey, unconfirmed, settings);
+	const whole = readPostedStep(known, stepKey, values, settings);
 	if (whole?.problems.length === 0) return { answers: whole.answers, unread: [] };
 	const asked = whole ?? findStep(asking, stepKey);
 	if (!asked) return undefined;
 	const { answers, unread } = readEach(asked, values, settings);
 	return { answers: withConfirmations(asked.step, asking, answers), unread };
+}
+
+/** What a phone without signal has asked about: it had the odd answers itself before they were confirmed. */
+function asAsked(asking: Asking, stepKey: string, values: StepValues, settings: ReadSettings): Asking {
+	const asked = findStep(asking, stepKey);
+	const read = asked && readWell(asking, stepKey, values, settings);
+	return read ? { ...asking, answers: withStep(asked, asking.answers, read.answers, read.unread) } : asking;
 }
 
 function readEach({ step, questions }: AskedStep, typed: StepValues, settings: ReadSettings): ReadWell {
