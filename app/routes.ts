@@ -60,6 +60,10 @@ export default [
 		]),
 	]),
 	route("answer/:surveyId/:operationId/keep/:screen", "routes/grower/keep.ts"),
+	route("answer/:surveyId/:operationId/pack", "routes/grower/pack.ts"),
+	// What a phone draws these pages with where there is no signal.
+	route("answer/offline", "routes/grower/offline.tsx"),
+	route("answer/worker.js", "routes/grower/worker.ts"),
 
 	...prefix("desk", [
 		layout("routes/desk/layout.tsx", [

@@ -130,6 +130,11 @@ export function settle(outbox: Outbox, changes: StepChanges): Outbox {
 	return { ...outbox, steps: Object.fromEntries(steps) };
 }
 
+/** Notes that the grower has sent the answers in while there was no signal, or that they have been sent. */
+export function askToSendIn(outbox: Outbox, sendIn: boolean): Outbox {
+	return { ...outbox, sendIn };
+}
+
 /** Lets a step go, for the answers that the server has. */
 export function letGo(outbox: Outbox, stepKey: string): Outbox {
 	const { [stepKey]: _, ...steps } = outbox.steps;

@@ -1,7 +1,15 @@
 import { listOpenChecks } from "./checks.ts";
 import type { Answer, FormDefinition } from "./form.ts";
 import { sumTolerance } from "./step-fields.ts";
-import { type AskedStep, answersByPlace, listAsked, placeOf, type PlantingAsked, type Step } from "./steps.ts";
+import {
+	type AskedStep,
+	type Asking,
+	answersByPlace,
+	listAsked,
+	placeOf,
+	type PlantingAsked,
+	type Step,
+} from "./steps.ts";
 
 /** Where to go on: the first step without any answer, or with one to finish or to look at again, if there is any. */
 export function findOpenStep(
@@ -13,6 +21,17 @@ export function findOpenStep(
 	return listAsked(definition, plantings, answers).find(
 		(asked) => answersOf(asked, answers).length === 0 || !isFinished(asked, answers) || toCheck.has(asked.step.key),
 	)?.step;
+}
+
+/** Why answers cannot be sent in yet: steps to finish, or with odd answers to look at again, in the order of the form. */
+export type Hindrance = { outcome: "unfinished" | "to_check"; stepKeys: string[] };
+
+export function findHindrance(asking: Asking): Hindrance | undefined {
+	const { definition, plantings, answers } = asking;
+	const unfinished = listAsked(definition, plantings, answers).filter((asked) => !isFinished(asked, answers));
+	if (unfinished.length > 0) return { outcome: "unfinished", stepKeys: unfinished.map(({ step }) => step.key) };
+	const toCheck = new Set(listOpenChecks(asking).map(({ step }) => step.key));
+	return toCheck.size > 0 ? { outcome: "to_check", stepKeys: [...toCheck] } : undefined;
 }
 
 /**

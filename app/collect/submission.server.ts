@@ -6,18 +6,14 @@ import type { Grower } from "#app/auth/viewer.ts";
 import { queueJob } from "#app/jobs/queue.server.ts";
 import { writeFacts } from "#app/tally/facts.server.ts";
 import { findNewestSubmission, sameAnswers, type Submission } from "./answer-rows.server.ts";
-import { listOpenChecks } from "./checks.ts";
 import type { Answer } from "./form.ts";
-import { isFinished } from "./progress.ts";
+import { findHindrance, type Hindrance } from "./progress.ts";
 import { type AnswerPlace, lockAnswering } from "./responses.server.ts";
-import { keptAnswers, listAsked } from "./steps.ts";
+import { keptAnswers } from "./steps.ts";
 
 export type Submitted =
 	| { outcome: "submitted" | "unchanged"; receiptCode: string; version: number }
-	/** Steps that lack a required answer or whose answers do not fit together, in the order of the form. */
-	| { outcome: "unfinished"; stepKeys: string[] }
-	/** Steps with answers that break a check, or that a check asks about and nobody has confirmed. */
-	| { outcome: "to_check"; stepKeys: string[] }
+	| Hindrance
 	| "not_found"
 	| "closed"
 	| "not_started";
@@ -41,10 +37,8 @@ export async function submitResponse(
 	const newest = await findNewestSubmission(trx, response.responseId);
 	if (newest && response.receiptCode !== null && sameAnswers(newest.answers, answers))
 		return { outcome: "unchanged", receiptCode: response.receiptCode, version: response.submittedVersion };
-	const stepKeys = stepsUnfinished(answering);
-	if (stepKeys.length > 0) return { outcome: "unfinished", stepKeys };
-	const toCheck = new Set(listOpenChecks(answering).map(({ step }) => step.key));
-	if (toCheck.size > 0) return { outcome: "to_check", stepKeys: [...toCheck] };
+	const hindrance = findHindrance(answering);
+	if (hindrance) return hindrance;
 
 	const version = response.submittedVersion + 1;
 	const receiptCode = response.receiptCode ?? newReceiptCode();
@@ -67,12 +61,6 @@ export async function submitResponse(
 		detail: { surveyId: place.surveyId, operationId: place.operationId, version, byLink: viewer.link !== null },
 	});
 	return { outcome: "submitted", receiptCode, version };
-}
-
-function stepsUnfinished({ definition, plantings, answers }: Locked): string[] {
-	return listAsked(definition, plantings, answers)
-		.filter((asked) => !isFinished(asked, answers))
-		.map(({ step }) => step.key);
 }
 
 async function keepSubmission(

@@ -3,10 +3,18 @@ import type { Browser } from "playwright-core";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
-import { addPerson, asDesk, connectOwner, useDatabase } from "#tests/database/surveys-fixture.ts";
+import { addPerson, asDesk, connectOwner, count, useDatabase } from "#tests/database/surveys-fixture.ts";
 import { axeFindings, openBrowser } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
-import { askByLink, heldByServer, openPhone, openWindow, word } from "./offline/phone.ts";
+import {
+	askByLink,
+	heldByPhone,
+	heldByServer,
+	openPhone,
+	openWindow,
+	readyForNoSignal,
+	word,
+} from "./offline/phone.ts";
 
 let stack: Stack;
 let browser: Browser;
@@ -191,4 +199,143 @@ test("another grower's link on the same phone shows nothing of the first one, wh
 	await expect.poll(() => other.inputValue("[name=harvested]")).toBe("130");
 	await expect.poll(() => heldByServer(owner, first.place.surveyId)).toMatchObject({ harvested: 130 });
 	expect(await heldByServer(owner, second.place.surveyId)).toEqual({});
+});
+
+test("an opened survey is answered to its end without signal, and sent in once when signal is back", async () => {
+	const grower = await asked();
+	const page = await openPhone(browser, grower);
+	await readyForNoSignal(page);
+	await page.fill("[name=normal_crop]", "4000");
+	await page.context().setOffline(true);
+	await page.fill("[name=harvested]", "a lot");
+	await word(page).getByText("Kept on this phone", { exact: false }).waitFor();
+	const next = () => page.getByRole("button", { name: "Continue" }).click();
+	await next();
+	await page.getByText("There is no signal. You can go on", { exact: false }).waitFor();
+	await page.locator("#field-harvested[aria-invalid=true]").waitFor();
+	expect(await axeFindings(page)).toEqual([]);
+	await page.fill("[name=harvested]", "1000");
+	await next();
+	await page.fill("[name=cause_freeze]", "100");
+	await next();
+	await page.locator("[name=first_harvest]").waitFor();
+	await page.getByRole("link", { name: "Back" }).click();
+	expect(await page.inputValue("[name=cause_freeze]")).toBe("100");
+	await next();
+	await next();
+	await page.check("[name=bud_set][value=light]");
+	await next();
+	await page.getByRole("heading", { name: "Check your answers" }).waitFor();
+	expect(await page.innerText("main")).toMatch(/1,000 lb.*100%.*Light/s);
+	await page.getByRole("button", { name: "Send my answers" }).click();
+	await page.getByRole("heading", { name: "Your answers wait on this phone" }).waitFor();
+	expect(await axeFindings(page)).toEqual([]);
+	await page.close();
+
+	await page.context().setOffline(false);
+	const again = await openWindow(page.context(), grower.address);
+	await again.getByRole("heading", { name: "Thank you, we have your answers" }).waitFor();
+	expect(await again.innerText("main")).toMatch(/1,000 lb.*100%.*Light/s);
+	const submissions = "collect.submission join collect.response using (response_id) where survey_id = $1";
+	expect(await count(owner, submissions, [grower.place.surveyId])).toBe(1);
+	// The phone keeps no copy of what was sent in.
+	await expect.poll(() => heldByPhone(again)).toEqual([0, 0]);
+	expect(page.complaints.filter((line) => !line.includes("ERR_INTERNET_DISCONNECTED"))).toEqual([]);
+});
+
+test("going on while the server is away is answered by the phone, and by the server again when it is back", async () => {
+	const grower = await asked();
+	const page = await openPhone(browser, grower);
+	await readyForNoSignal(page);
+	await stack.kill("server");
+	await page.fill("[name=normal_crop]", "4000");
+	await page.fill("[name=harvested]", "4000");
+	await page.getByRole("button", { name: "Continue" }).click();
+	await page.locator("[name=first_harvest]").waitFor();
+	await page.reload();
+	await page.locator("[name=first_harvest]").waitFor();
+	await page.fill("[name=first_harvest]", "2031-09-02");
+	await stack.start("server");
+	await expect
+		.poll(() => heldByServer(owner, grower.place.surveyId), { timeout: 60_000 })
+		.toMatchObject({ harvested: 4000 });
+	await page.goto(`${grower.address}/review`);
+	await page.getByText("4,000 lb").first().waitFor();
+	expect(await page.locator("text=There is no signal").count()).toBe(0);
+});
+
+test("what the phone has taken along is not drawn in another grower's session", async () => {
+	const first = await asked();
+	const second = await asked();
+	const page = await openPhone(browser, first);
+	await readyForNoSignal(page);
+	expect((await heldByPhone(page))[1]).toBe(1);
+	await page.goto(await second.link());
+	await page.locator("form button").last().click();
+	await page.waitForURL(second.address);
+	await expect.poll(() => heldByPhone(page)).toEqual([0, 0]);
+	await page.context().setOffline(true);
+	await page.goto(first.ask);
+	await page.getByText("this phone does not hold this page", { exact: false }).waitFor();
+	expect(await page.locator("form").count()).toBe(0);
+});
+
+test("a survey that closed before a phone had signal again says what was not received", async () => {
+	const grower = await asked();
+	const page = await openPhone(browser, grower);
+	await page.context().setOffline(true);
+	await page.fill("[name=harvested]", "140");
+	await word(page).getByText("Kept on this phone", { exact: false }).waitFor();
+	await asDesk(associate, (trx) => closeSurvey(trx, associate, grower.place.surveyId));
+	await page.close();
+	await page.context().setOffline(false);
+	const again = await openWindow(page.context(), grower.address);
+	await again
+		.getByText("The survey closed before all that you typed on this phone could be sent.", { exact: false })
+		.waitFor();
+	await expect.poll(() => heldByPhone(again)).toEqual([0, 0]);
+	expect(await heldByServer(owner, grower.place.surveyId)).toEqual({});
+});
+
+test("a phone whose clock is wrong loses nothing and blames nobody", async () => {
+	const grower = await asked();
+	const page = await openPhone(browser, grower);
+	await readyForNoSignal(page);
+	await page.clock.setFixedTime(new Date("2019-03-01T12:00:00Z"));
+	await page.context().setOffline(true);
+	await page.fill("[name=harvested]", "150");
+	await page.fill("[name=normal_crop]", "150");
+	await page.getByRole("button", { name: "Continue" }).click();
+	await page.locator("[name=first_harvest]").waitFor();
+	await page.context().setOffline(false);
+	const again = await openWindow(page.context(), grower.ask);
+	await expect.poll(() => heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 150 });
+	expect(await again.getByText("changed", { exact: false }).count()).toBe(0);
+});
+
+test("tapping Send twice makes one response, and the keyboard alone is enough for it all", async () => {
+	const grower = await asked();
+	const page = await openPhone(browser, grower);
+	await page.focus("[name=normal_crop]");
+	await page.keyboard.type("4000");
+	await page.focus("[name=harvested]");
+	await page.keyboard.type("4000");
+	await page.keyboard.press("Enter");
+	await page.locator("[name=first_harvest]").waitFor();
+	await page.focus("[name=first_harvest]");
+	await page.keyboard.press("Enter");
+	await page.locator("[name=bud_set]").first().waitFor();
+	await page.focus("[name=bud_set]");
+	await page.keyboard.press("Space");
+	await page.focus("button[data-on]");
+	await page.keyboard.press("Enter");
+	const send = page.getByRole("button", { name: "Send my answers" });
+	await send.waitFor();
+	await send.dblclick();
+	await page.getByRole("heading", { name: "Thank you, we have your answers" }).waitFor();
+	const submissions = "collect.submission join collect.response using (response_id) where survey_id = $1";
+	expect(await count(owner, submissions, [grower.place.surveyId])).toBe(1);
+	expect(await count(owner, "collect.mailing where survey_id = $1 and kind = 'receipt'", [grower.place.surveyId])).toBe(
+		1,
+	);
 });

@@ -85,6 +85,8 @@ const guards: Record<string, string[]> = {
 };
 const asksNobody: Record<string, string> = {
 	"app/routes/grower/layout.tsx": "the frame of the grower's pages, which shows nothing of anybody",
+	"app/routes/grower/offline.tsx": "the page that a phone draws its own survey in, and that shows nothing of anybody",
+	"app/routes/grower/worker.ts": "the service worker's script, the same for everybody",
 	"app/routes/grower/link.tsx": "a personal link's own token says who asks",
 };
 

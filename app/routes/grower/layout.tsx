@@ -2,10 +2,11 @@ import type { ReactNode } from "react";
 import { Outlet } from "react-router";
 import type { Route } from "./+types/layout";
 import { LanguageSwitch } from "#app/components/language-switch.tsx";
-import { RefusalPage } from "#app/components/refusal-page.tsx";
+import { readError, RefusalPage } from "#app/components/refusal-page.tsx";
 import { Sheet } from "#app/components/shell.tsx";
 import { HelpLine } from "#app/components/site-footer.tsx";
 import { Brand, SignedIn } from "#app/components/site-header.tsx";
+import { RefusedPart } from "./parts/phone-part.tsx";
 
 export default function GrowerLayout() {
 	return (
@@ -19,6 +20,7 @@ export function ErrorBoundary({ error }: Route.ErrorBoundaryProps) {
 	return (
 		<GrowerFrame>
 			<RefusalPage error={error} />
+			<RefusedPart code={readError(error).code} />
 		</GrowerFrame>
 	);
 }

@@ -7,9 +7,11 @@ import { ButtonLink } from "#app/components/button.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
+import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { getAnswering, phonePart } from "./parts/answering.server.ts";
+import { getAnswering } from "./parts/answering.server.ts";
 import { PhonePart } from "./parts/phone-part.tsx";
+import { phonePart } from "./parts/phone.server.ts";
 
 export const handle = { bare: true };
 
@@ -27,7 +29,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		closesAt: answering.closesAt,
 		timeZone: answering.timeZone,
 		groups: listAnswerLines(definition, plantings, answers),
-		phone: phonePart(answering, response),
+		phone: phonePart(answering, getLanguage(context)),
 	};
 }
 

@@ -6,7 +6,8 @@ import { listSteps } from "#app/collect/steps.ts";
 import { submitResponse } from "#app/collect/submission.server.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { getAnswering, phonePart } from "./parts/answering.server.ts";
+import { getAnswering } from "./parts/answering.server.ts";
+import { phonePart } from "./parts/phone.server.ts";
 import { ReviewView } from "./parts/review-view.tsx";
 
 /** As on a screen: forms, links and one small script. */
@@ -24,7 +25,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		timeZone: answering.timeZone,
 		sent: response.receiptCode !== null,
 		changed: response.changedSinceSubmission,
-		phone: phonePart(answering, response),
+		phone: phonePart(answering, getLanguage(context)),
 	};
 }
 

@@ -12,7 +12,8 @@ import { changeOf, judgeChange, type SentChange, versionOf } from "#app/collect/
 import { listSteps } from "#app/collect/steps.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { getAnswering, phonePart, todayIn } from "./parts/answering.server.ts";
+import { getAnswering, todayIn } from "./parts/answering.server.ts";
+import { phonePart } from "./parts/phone.server.ts";
 import { readPosted } from "./parts/posted.server.ts";
 import { ScreenView } from "./parts/screen-view.tsx";
 
@@ -26,7 +27,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	const settings = { massUnit, crates, language: getLanguage(context) };
 	const shown = showStep(answering, response.stepChanges, params.screen, settings);
 	if (!shown) throw refusal("page_not_found");
-	return { ...shown, phone: phonePart(answering, response) };
+	return { ...shown, phone: phonePart(answering, settings.language) };
 }
 
 export async function action({ context, params, request }: Route.ActionArgs) {

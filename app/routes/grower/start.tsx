@@ -14,8 +14,9 @@ import { wordsIn } from "#app/i18n/language.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { getAnswering, phonePart } from "./parts/answering.server.ts";
+import { getAnswering } from "./parts/answering.server.ts";
 import { PhonePart } from "./parts/phone-part.tsx";
+import { phonePart } from "./parts/phone.server.ts";
 import { Pledge } from "./parts/pledge.tsx";
 
 export const handle = { bare: true };
@@ -24,7 +25,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	const answering = await getAnswering(context, params);
 	const { definition, plantings, answers, response } = answering;
 	return {
-		phone: response && phonePart(answering, response),
+		phone: phonePart(answering, getLanguage(context)),
 		title: answering.title,
 		season: answering.season,
 		operationName: answering.operationName,
@@ -94,7 +95,7 @@ export default function Start({ loaderData, params }: Route.ComponentProps) {
 					<Button>{t("start.begin")}</Button>
 				</Form>
 			)}
-			{loaderData.phone && <PhonePart {...loaderData.phone} stage="start" />}
+			<PhonePart {...loaderData.phone} stage="start" />
 		</Page>
 	);
 }

@@ -1,5 +1,6 @@
 import type { Browser, BrowserContext, Page } from "playwright-core";
 import type { Client } from "pg";
+import { expect } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { createPersonalLink } from "#app/collect/personal-link.server.ts";
@@ -37,6 +38,29 @@ export async function openWindow(context: BrowserContext, address: string): Prom
 	page.setDefaultTimeout(30_000);
 	await page.goto(address);
 	return page;
+}
+
+/** How many responses and how many surveys the phone holds. */
+export function heldByPhone(page: Page): Promise<[number, number]> {
+	return page.evaluate(async () => {
+		// oxlint-disable-next-line unicorn/consistent-function-scoping -- runs in the browser, which has nothing of this file
+		const answer = <T>(request: IDBRequest<T>) =>
+			new Promise<T>((resolve) => request.addEventListener("success", () => resolve(request.result)));
+		const database = await answer(indexedDB.open("tallygrove-answers", 1));
+		const count = (store: string) => answer(database.transaction(store).objectStore(store).count());
+		const counts: [number, number] = [await count("held"), await count("packs")];
+		database.close();
+		return counts;
+	});
+}
+
+/** Waits until the phone could draw the survey by itself. */
+export async function readyForNoSignal(page: Page): Promise<void> {
+	await page.waitForFunction(async () => {
+		await navigator.serviceWorker.ready;
+		return (await caches.match("/answer/offline")) !== undefined && navigator.serviceWorker.controller !== null;
+	});
+	await expect.poll(() => heldByPhone(page)).toEqual([expect.anything(), 1]);
 }
 
 export const word = (page: Page) => page.locator("#kept-word");

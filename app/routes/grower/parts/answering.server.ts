@@ -1,7 +1,7 @@
 import { createHash } from "node:crypto";
 import type { RouterContextProvider } from "react-router";
 import { requireGrower } from "#app/auth/guard.server.ts";
-import { type Answering, findAnswering, type ResponseSoFar } from "#app/collect/responses.server.ts";
+import { type Answering, findAnswering } from "#app/collect/responses.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
 import { refusal } from "#app/lib/refusal.ts";
 
@@ -25,12 +25,6 @@ export async function getAnswering(context: Readonly<RouterContextProvider>, pla
 function holderOf({ link, person }: Grower): string {
 	const who = link ? `link ${link.personalLinkId}` : `person ${person?.personId}`;
 	return createHash("sha256").update(who).digest("base64url").slice(0, 16);
-}
-
-/** What a page tells the phone of a response that was begun. */
-export function phonePart(answering: OpenAnswering, response: ResponseSoFar) {
-	const { surveyId, operationId, holder } = answering;
-	return { surveyId, operationId, holder, responseId: response.responseId, changes: response.stepChanges };
 }
 
 /** The day it is at the operation, for answers that must not lie in the future. */

@@ -28,3 +28,14 @@ export function PhonePart({ labels, ...page }: PhonePartProps) {
 export function KeptWord() {
 	return <output id="kept-word" className="block min-h-7 text-base text-quiet" />;
 }
+
+/** On a page that refuses: where the script says what becomes of answers that only this phone holds. */
+export function RefusedPart({ code }: { code: string }) {
+	const { t } = useTranslation("grower");
+	return (
+		<>
+			<output id="refused" data-code={code} data-late={t("kept.late")} className="block pb-8 font-bold" />
+			<script type="module" src={pageScript} />
+		</>
+	);
+}

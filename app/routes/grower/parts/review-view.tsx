@@ -2,6 +2,7 @@ import { useTranslation } from "react-i18next";
 import { Form, href, Link, useNavigation } from "react-router";
 import type { AnswerGroup } from "#app/collect/answer-lines.ts";
 import type { Words } from "#app/collect/form.ts";
+import type { Hindrance } from "#app/collect/progress.ts";
 import type { PlantingAsked } from "#app/collect/steps.ts";
 import { AnswerList } from "#app/components/answer-list.tsx";
 import { Button } from "#app/components/button.tsx";
@@ -21,11 +22,10 @@ type ReviewViewProps = {
 	sent: boolean;
 	changed: boolean;
 	/** Why the answers could not be sent in. */
-	refused: Refused | undefined;
+	refused: Hindrance | undefined;
 	place: { surveyId: string; operationId: string };
 	phone: Omit<PhonePage, "stage">;
 };
-type Refused = { outcome: "unfinished" | "to_check"; stepKeys: string[] };
 
 /** All answers before they are sent, each with a way back to its screen. */
 export function ReviewView({ groups, steps, refused, place, phone, ...rest }: ReviewViewProps) {
@@ -44,7 +44,9 @@ export function ReviewView({ groups, steps, refused, place, phone, ...rest }: Re
 			<AnswerList groups={groups} editHref={askAddress} />
 			<Form method="post" className="mt-8" data-answering="">
 				<p className="mb-4">{t("review.until", { closes: format.moment(closesAt, timeZone) })}</p>
-				<Button busy={busy}>{t(sent ? "review.sendChanges" : "review.send")}</Button>
+				<Button busy={busy} data-on="">
+					{t(sent ? "review.sendChanges" : "review.send")}
+				</Button>
 				<KeptWord />
 			</Form>
 			<PhonePart
@@ -56,7 +58,7 @@ export function ReviewView({ groups, steps, refused, place, phone, ...rest }: Re
 	);
 }
 
-type UnfinishedProps = Refused & { steps: Titled[]; addressOf: (screen: string) => string };
+type UnfinishedProps = Hindrance & { steps: Titled[]; addressOf: (screen: string) => string };
 
 /** What is still missing or odd, with a way to each; answers that are there stay. */
 function Unfinished({ steps, outcome, stepKeys, addressOf }: UnfinishedProps) {

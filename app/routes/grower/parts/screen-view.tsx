@@ -79,7 +79,9 @@ export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
 				))}
 				{shared.size > 0 && <ScreenUnknown values={values} />}
 				<div className="mt-8 flex flex-wrap items-center gap-4">
-					<Button busy={busy}>{t(elsewhere ? "elsewhere.mine" : "common:button.continue")}</Button>
+					<Button busy={busy} data-on="">
+						{t(elsewhere ? "elsewhere.mine" : "common:button.continue")}
+					</Button>
 					<Link to={backAddress(place, previous)} className="inline-flex min-h-11 items-center">
 						{t("common:button.back")}
 					</Link>

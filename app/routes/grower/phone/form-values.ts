@@ -2,8 +2,12 @@ import type { StepValues } from "#app/collect/posted.ts";
 
 /** What the boxes of a screen hold. Names that begin with an underscore tell of the change itself and are no boxes. */
 export function valuesIn(form: HTMLFormElement, submitter: HTMLElement | null = null): StepValues {
+	return valuesOf(new FormData(form, submitter));
+}
+
+export function valuesOf(posted: FormData): StepValues {
 	const values: StepValues = {};
-	for (const [name, value] of new FormData(form, submitter)) {
+	for (const [name, value] of posted) {
 		if (name.startsWith("_") || typeof value !== "string") continue;
 		const before = values[name];
 		values[name] = before === undefined ? value : [before, value].flat();

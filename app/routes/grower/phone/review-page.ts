@@ -1,12 +1,12 @@
 import { listUnsettled, nextToSend, settle } from "#app/collect/outbox.ts";
 import { versionOf } from "#app/collect/step-change.ts";
-import type { PageData } from "./page-data.ts";
+import type { BegunPage } from "./page-data.ts";
 import { change, sendWaiting } from "./send.ts";
 import type { Held, PhoneStore } from "./store.ts";
 
 /** The page shows what the server has: what the phone still holds is sent first, and named where it cannot be. */
-export async function startReviewPage(store: PhoneStore, page: PageData, form: HTMLFormElement): Promise<void> {
-	const held = await change(store, page.responseId, (outbox) => settle(outbox, page.changes));
+export async function startReviewPage(store: PhoneStore, page: BegunPage, form: HTMLFormElement): Promise<void> {
+	const held = await change(store, page.responseId, (outbox) => settle(outbox, page.told.changes));
 	const hadMore = held !== undefined && nextToSend(held.outbox) !== undefined;
 	form.addEventListener("submit", (event) => void sendIn(store, page, event));
 	if (!hadMore) {
@@ -19,12 +19,12 @@ export async function startReviewPage(store: PhoneStore, page: PageData, form: H
 }
 
 /** Whether the server took something that the page does not show yet; a screen that was passed by holds nothing new. */
-function hasNews(held: Held | undefined, { changes }: PageData): boolean {
-	return Object.entries(held?.outbox.steps ?? {}).some(([key, step]) => step.seen > versionOf(changes, key));
+function hasNews(held: Held | undefined, { told }: BegunPage): boolean {
+	return Object.entries(held?.outbox.steps ?? {}).some(([key, step]) => step.seen > versionOf(told.changes, key));
 }
 
 /** Sends the answers in when all that was typed is among them. */
-async function sendIn(store: PhoneStore, page: PageData, event: SubmitEvent): Promise<void> {
+async function sendIn(store: PhoneStore, page: BegunPage, event: SubmitEvent): Promise<void> {
 	event.preventDefault();
 	const { target, submitter } = event;
 	if (submitter?.getAttribute("aria-disabled") === "true") return;
@@ -35,7 +35,7 @@ async function sendIn(store: PhoneStore, page: PageData, event: SubmitEvent): Pr
 }
 
 /** Names the screens whose newest answers are on this phone only. @returns whether there are any. */
-async function sayUnsettled(store: PhoneStore, page: PageData): Promise<boolean> {
+async function sayUnsettled(store: PhoneStore, page: BegunPage): Promise<boolean> {
 	const held = await store.read(page.responseId);
 	const unsettled = held ? listUnsettled(held.outbox) : [];
 	const place = document.getElementById("kept-word");

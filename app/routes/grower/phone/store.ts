@@ -1,4 +1,5 @@
 import { emptyOutbox, type Outbox } from "#app/collect/outbox.ts";
+import { isPack, type Pack } from "./pack.ts";
 
 /** What a phone holds of one response. Only the response's own pages ask for it, by its id. */
 export type Held = {
@@ -18,6 +19,10 @@ export type PhoneStore = {
 	list(): Promise<Held[]>;
 	/** Changes what is held in one step that no other page of the phone comes between. Undefined from `next` forgets it. */
 	change(responseId: string, next: (held: Held | undefined) => Held | undefined): Promise<Held | undefined>;
+	/** What the pages of opened surveys are drawn from while there is no signal. */
+	listPacks(): Promise<Pack[]>;
+	putPack(pack: Pack): Promise<void>;
+	dropPack(responseId: string): Promise<void>;
 };
 
 export async function openStore(): Promise<PhoneStore> {
@@ -58,15 +63,31 @@ export async function openStore(): Promise<PhoneStore> {
 				() => remember(next(memory.get(responseId))),
 			);
 		},
+		// A survey that is not there without signal is no loss: nothing typed is in it.
+		listPacks: async () => (database ? await listPacks(database).catch(() => []) : []),
+		putPack: async (pack) => void (database && (await writePack(database, (at) => at.put(pack)))),
+		dropPack: async (responseId) => void (database && (await writePack(database, (at) => at.delete(responseId)))),
 	};
 }
 
 const name = "held";
+const packs = "packs";
 
 function open(): Promise<IDBDatabase> {
 	const request = indexedDB.open("tallygrove-answers", 1);
-	request.addEventListener("upgradeneeded", () => request.result.createObjectStore(name, { keyPath: "responseId" }));
+	request.addEventListener("upgradeneeded", () => {
+		for (const store of [name, packs]) request.result.createObjectStore(store, { keyPath: "responseId" });
+	});
 	return done(request);
+}
+
+async function listPacks(database: IDBDatabase): Promise<Pack[]> {
+	const found = await done<unknown[]>(database.transaction(packs).objectStore(packs).getAll());
+	return found.filter(isPack);
+}
+
+async function writePack(database: IDBDatabase, write: (at: IDBObjectStore) => IDBRequest): Promise<void> {
+	await done(write(database.transaction(packs, "readwrite").objectStore(packs))).catch(() => undefined);
 }
 
 function done<T>(request: IDBRequest<T>): Promise<T> {

@@ -1,0 +1,33 @@
+import { isReadyToSendIn, reviewOf } from "../send-in.ts";
+import { sendWaiting } from "../send.ts";
+import type { Pack } from "../pack.ts";
+import { here } from "./here.ts";
+
+const pause = 20_000;
+
+/**
+ * Looks for the server, and sends what waits as soon as it answers. The page then stays as it is, for somebody may be typing
+ * in it; going on from it leads to the server's own. Answers that were sent in are followed to their receipt.
+ */
+export function watchForSignal(pack: Pack): void {
+	const look = async () => {
+		if (!navigator.onLine) {
+			here.reachable = false;
+			return;
+		}
+		const answer = await fetch("/healthz", { cache: "no-store" }).catch(() => null);
+		here.reachable = answer?.ok ?? false;
+		if (!here.reachable) return;
+		await sendWaiting(here.store, pack.responseId, () => {});
+		const held = await here.store.read(pack.responseId);
+		if (isReadyToSendIn(held)) location.replace(reviewOf(held));
+	};
+	window.addEventListener("online", () => void look());
+	window.addEventListener("offline", () => void look());
+	window.setInterval(() => void look(), pause);
+	const { serviceWorker } = navigator;
+	// Where the browser can, it sends when signal is back though no page is open.
+	void serviceWorker?.ready.then((registration) =>
+		(registration as { sync?: { register(tag: string): Promise<void> } }).sync?.register("answers").catch(() => {}),
+	);
+}
