@@ -1,5 +1,5 @@
 import type { StepValues } from "./posted.ts";
-import { changeOf, type SentChange, type StepChanges } from "./step-change.ts";
+import { changeOf, mostUnsure, type SentChange, type StepChanges } from "./step-change.ts";
 
 /*
  * What one phone holds of one response: of each step what was typed last, and whether the server has it. Every function
@@ -38,9 +38,6 @@ export type Outbox = {
 	sendIn: boolean;
 };
 export type KeptAnswer = { kept: boolean; version: number; unread: string[] };
-
-/** As many as the server takes. One left out could at worst be taken for another device's change. */
-const mostUnsure = 90;
 
 export const emptyOutbox: Outbox = { steps: {}, count: 0, sendIn: false };
 

@@ -10,6 +10,18 @@ export type SentChange = {
 	unsure: string[];
 };
 
+/** As many names as a sender may tell. One left out could at worst be taken for another device's change. */
+export const mostUnsure = 90;
+
+/**
+ * What a sender is unsure of after a change that was not kept as a whole: parts of it may have been sent beforehand, and may
+ * still arrive.
+ */
+export function unsureNow(sent: SentChange | undefined): string[] {
+	if (!sent) return [];
+	return [...sent.unsure, ...(sent.changeId === null ? [] : [sent.changeId])].slice(-mostUnsure);
+}
+
 /** The newest change of each step that was ever kept, by the step's key. */
 export type StepChanges = Record<string, StepChange>;
 

@@ -99,6 +99,20 @@ test("what needs mending keeps the version it was typed upon", async () => {
 	expect((await visitor.post(ask, typed("a lot", { _seen: "1" }))).status).toBe(400);
 });
 
+test("what the page itself kept before it was to be mended is not another device's, also before its script has begun", async () => {
+	const { visitor, keep, ask } = await begun();
+	const change = { _change: "change-two", _unsure: "change-one" };
+	// The first was sent as it was typed; going on overtook it, and came back to be mended.
+	const wrong = await visitor.post(ask, typed("a lot", change));
+	await visitor.post(keep, typed("50", { _change: "change-one" }));
+	expect(wrong.status).toBe(400);
+	const told = [...wrong.text.matchAll(/name="_unsure" value="([^"]+)"/g)].map(([, name]) => name);
+	expect(told).toEqual(["change-one", "change-two"]);
+	expect((await visitor.post(ask, typed("70"))).status).toBe(409);
+	expect((await visitor.post(ask, typed("70", { _unsure: told[0]! }))).status).toBe(303);
+	expect((await visitor.get(ask)).text).toMatch(/name="harvested"[^>]*value="70"/);
+});
+
 test("whoever may not answer keeps nothing, and forged changes are refused", async () => {
 	const mine = await begun();
 	const theirs = await begun();

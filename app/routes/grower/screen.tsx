@@ -8,7 +8,7 @@ import { type PostedStep, readPostedStep } from "#app/collect/posted-step.ts";
 import { postedText, type StepValues } from "#app/collect/posted.ts";
 import type { Answering } from "#app/collect/responses.server.ts";
 import { showStep } from "#app/collect/show-step.ts";
-import { changeOf, judgeChange, type SentChange, versionOf } from "#app/collect/step-change.ts";
+import { changeOf, judgeChange, type SentChange, unsureNow, versionOf } from "#app/collect/step-change.ts";
 import { listSteps } from "#app/collect/steps.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -57,7 +57,10 @@ function showProblems(answering: Answering, posted: PostedStep, values: StepValu
 	const { step, questions, problems } = posted;
 	const newest = changeOf(answering.response?.stepChanges ?? {}, step.key);
 	if (sent && judgeChange(newest, sent, false) === "changed_elsewhere") return showBoth(answering, posted, values);
-	return data({ values, questions, problems, seen: sent?.seen, elsewhere: null }, { status: 400 });
+	return data(
+		{ values, questions, problems, seen: sent?.seen, unsure: unsureNow(sent), elsewhere: null },
+		{ status: 400 },
+	);
 }
 
 /** What was typed beside what another device has given, to choose from. */
@@ -65,7 +68,7 @@ function showBoth(answering: Answering, { step, questions, answers, problems }: 
 	const unread = new Map(problems.map(({ field }) => [field, postedText(values, field)]));
 	const elsewhere = listDifferences(answering, step.key, answers, unread);
 	const seen = versionOf(answering.response?.stepChanges ?? {}, step.key);
-	return data({ values, questions, problems: [], seen, elsewhere }, { status: 409 });
+	return data({ values, questions, problems: [], seen, unsure: [], elsewhere }, { status: 409 });
 }
 
 /** The same step while its answers are to be confirmed, else the next one, or the review where somebody came from there. */

@@ -26,6 +26,8 @@ export type PostedScreen = {
 	problems: Problem[];
 	/** The version of the step upon which it was typed. */
 	seen: number | undefined;
+	/** Names of earlier changes of the same page, which the newest answers of the step may be. */
+	unsure: string[];
 	/** Where another device has changed the step since, in what the two differ. */
 	elsewhere: Difference[] | null;
 };
@@ -65,6 +67,9 @@ export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
 			{/* A screen of its own: boxes of one step must not carry their text into the next. */}
 			<Form key={step.key} method="post" noValidate data-answering="" data-both={elsewhere ? "" : undefined}>
 				<input type="hidden" name="_seen" value={posted?.seen ?? shown.version} />
+				{posted?.unsure.map((name) => (
+					<input key={name} type="hidden" name="_unsure" value={name} />
+				))}
 				{elsewhere && <ChangedElsewhere lines={elsewhere} />}
 				{!posted && <CheckNotice checks={shown.checks} busy={busy} />}
 				{questions.map((question) => (

@@ -63,7 +63,7 @@ export async function goOnFromScreen(args: ActionFunctionArgs) {
 	if (!posted) return redirect(href("/answer/:surveyId/:operationId", placeOf(pack)));
 	const { questions, problems } = posted;
 	if (problems.length > 0)
-		return data({ values, questions, problems, seen: undefined, elsewhere: null }, { status: 400 });
+		return data({ values, questions, problems, seen: undefined, unsure: [], elsewhere: null }, { status: 400 });
 	const { pathname, search, searchParams } = new URL(args.request.url);
 	if (listChecksToAsk(asking, stepKey).length > 0) return redirect(pathname + search);
 	const steps = listSteps(asking.definition, asking.plantings, asking.answers);
