@@ -1,16 +1,13 @@
 import type { Moments } from "#app/lib/moments.ts";
 import type { Tally } from "#app/tally/tally.ts";
 import { domainDegreesOfFreedom, domainStrata, domainTotals, type DomainStratum } from "#app/estimate/domain.ts";
-import { meanEstimate, ratioEstimate, totalEstimate, type Figure } from "#app/estimate/estimators.ts";
+import { estimateOf, type Figure } from "#app/estimate/estimators.ts";
 import { exactInterval, logitInterval, normalInterval, type Interval } from "#app/estimate/interval.ts";
+import { linearize, type EstimateKind } from "#app/estimate/linearize.ts";
 import { steadiness, type Steadiness, type SteadinessCutOffs } from "#app/estimate/steadiness.ts";
 import type { Join, StrataFrame } from "#app/estimate/strata.ts";
 
-/**
- * What is estimated from a measure's y and x: the total of y; the mean of y an operation; the ratio of the totals of y
- * and x; or a proportion, a ratio that lies between 0 and 1 because y is a part of x (or y is 0 or 1 and x is 1).
- */
-export type EstimateKind = "total" | "mean" | "ratio" | "proportion";
+export type { EstimateKind };
 
 /** `range` holds the values that are possible at all; an interval is cut off there. Left out: none is impossible. */
 export type EstimatedMeasure = { kind: EstimateKind; range?: { lowest?: number; highest?: number } };
@@ -59,7 +56,8 @@ export function estimateCell(
 	if (respondents === 0) return { ...empty, respondents, joins, missing: "no_respondents" };
 
 	if (respondents === 1) {
-		const value = pointOf(measure.kind, strata);
+		// The value without its variance, which the stratum of a lone respondent need not have.
+		const value = linearize(measure.kind, strata)?.value ?? null;
 		return { ...empty, value, respondents, joins, missing: value === null ? "no_base" : "one_respondent" };
 	}
 	const figure = figureOf(measure.kind, strata);
@@ -81,20 +79,10 @@ export function estimateCell(
 }
 
 function figureOf(kind: EstimateKind, strata: readonly DomainStratum[]): Figure | null {
-	if (kind === "total") return totalEstimate(strata);
-	if (kind === "mean") return meanEstimate(strata);
-	const ratio = ratioEstimate(strata);
+	const figure = estimateOf(kind, strata);
 	// Weighted sums of parts that are the whole can come out a rounding above it.
-	if (kind === "proportion" && ratio && Math.abs(ratio.value - 1) < 1e-12) return { ...ratio, value: 1 };
-	return ratio;
-}
-
-/** The estimate without its variance, which the stratum of a lone respondent need not have. */
-function pointOf(kind: EstimateKind, strata: readonly DomainStratum[]): number | null {
-	const { count, totalY, totalX } = domainTotals(strata);
-	if (kind === "total") return totalY;
-	const base = kind === "mean" ? count : totalX;
-	return base === 0 ? null : totalY / base;
+	if (kind === "proportion" && figure && Math.abs(figure.value - 1) < 1e-12) return { ...figure, value: 1 };
+	return figure;
 }
 
 function intervalOf(kind: EstimateKind, figure: Figure, strata: readonly DomainStratum[]): Interval | null {

@@ -1,4 +1,5 @@
-import { domainTotals, type DomainStratum } from "#app/estimate/domain.ts";
+import type { DomainStratum } from "#app/estimate/domain.ts";
+import { linearize, type EstimateKind } from "#app/estimate/linearize.ts";
 import { linearizedVariance, type LoneRespondent } from "#app/estimate/variance.ts";
 
 /** An estimate and its standard error, both in the units of the quantity estimated. */
@@ -14,28 +15,26 @@ export type Figure = { value: number; standardError: number };
 
 /** Total of y over the domain, in units of y: 0 with standard error 0 where nobody of the domain answered. */
 export function totalEstimate(strata: readonly DomainStratum[], lone?: LoneRespondent): Figure {
-	const { totalY } = domainTotals(strata);
-	return figure(totalY, linearizedVariance(strata, { slope: 0, scale: 1 }, lone));
+	return estimateOf("total", strata, lone)!;
 }
 
 /** Mean of y an operation of the domain, in units of y. @returns null where nobody of the domain answered. */
 export function meanEstimate(strata: readonly DomainStratum[], lone?: LoneRespondent): Figure | null {
-	const { count, totalY } = domainTotals(strata);
-	if (count === 0) return null;
-	const mean = totalY / count;
-	return figure(mean, linearizedVariance(strata, { slope: 0, intercept: mean, scale: count }, lone));
+	return estimateOf("mean", strata, lone);
 }
 
 /**
- * Ratio of two totals, R = Y / X, in units of y per unit of x: pounds lost per pound of a normal crop, say. By Taylor
- * linearization the ratio is replaced by the total of z = w (y - R x) / X.
+ * Ratio of two totals, R = Y / X, in units of y per unit of x: pounds lost per pound of a normal crop, say.
  * @returns null where X is 0: there is then nothing to divide by.
  */
 export function ratioEstimate(strata: readonly DomainStratum[], lone?: LoneRespondent): Figure | null {
-	const { totalY, totalX } = domainTotals(strata);
-	if (totalX === 0) return null;
-	const ratio = totalY / totalX;
-	return figure(ratio, linearizedVariance(strata, { slope: ratio, scale: totalX }, lone));
+	return estimateOf("ratio", strata, lone);
+}
+
+/** Any of the above by its kind; a proportion is a ratio. */
+export function estimateOf(kind: EstimateKind, strata: readonly DomainStratum[], lone?: LoneRespondent): Figure | null {
+	const linearized = linearize(kind, strata);
+	return linearized && figure(linearized.value, linearizedVariance(strata, linearized, lone));
 }
 
 /**

@@ -1,4 +1,5 @@
 import type { DomainStratum } from "#app/estimate/domain.ts";
+import { residualSum, type Linearized } from "#app/estimate/linearize.ts";
 
 /**
  * What to do with a stratum that has one respondent of several, where a variance cannot be had from within:
@@ -9,11 +10,11 @@ import type { DomainStratum } from "#app/estimate/domain.ts";
 export type LoneRespondent = "refuse" | "certain" | "from_zero" | "as_others";
 
 /**
- * Variance of the weighted total of e = y - slope x over a domain, by strata, with finite population correction:
+ * Variance of the weighted total of e = (y - slope x - intercept) / scale over a domain, by strata, with finite population correction:
  * sum over strata of (1 - f) n/(n - 1) times the sum over ALL n respondents of (w e - mean of w e) squared, where
  * respondents outside the domain are zeros. Had from counts, sums and centred second moments alone.
  * A fully counted stratum (f = 1) adds nothing, also with one respondent.
- * @param residual turns y and x into e; `slope` 0 gives the total of y. `scale` divides e, as X does for a ratio.
+ * @param residual turns y and x into e (`linearize`).
  * @returns variance in units of (y / scale) squared; never negative, never NaN.
  * @throws {RangeError} when a stratum has no weight or no respondents, fewer respondents than its domain, or one
  *   respondent of several under `refuse`.
@@ -22,7 +23,7 @@ export type LoneRespondent = "refuse" | "certain" | "from_zero" | "as_others";
  */
 export function linearizedVariance(
 	strata: readonly DomainStratum[],
-	residual: { slope: number; intercept?: number; scale: number },
+	residual: Omit<Linearized, "value">,
 	lone: LoneRespondent = "refuse",
 ): number {
 	let variance = 0;
@@ -42,19 +43,27 @@ export function linearizedVariance(
 	return loneStrata > 0 ? (variance * domainStrata) / (domainStrata - loneStrata) : variance;
 }
 
-/** Sum of the residuals in one stratum and their sum of squares about the mean over all its respondents. */
-function residualMoments(
-	{ respondents, domain }: DomainStratum,
-	{ slope, intercept = 0 }: { slope: number; intercept?: number },
+/** Sum of the residuals in one stratum and their sum of squares about the mean over all its respondents, unscaled. */
+export function residualMoments(
+	{ respondents, domain }: Pick<DomainStratum, "respondents" | "domain">,
+	residual: Pick<Linearized, "slope" | "intercept">,
 ): { sum: number; spread: number } {
 	if (domain.n === 0) return { sum: 0, spread: 0 };
-	const sum = domain.sumY - slope * domain.sumX - intercept * domain.n;
+	const sum = residualSum(residual, domain);
+	const slope = residual.slope.high;
 	const size = domain.mYY + slope ** 2 * domain.mXX;
 	const within = domain.mYY - 2 * slope * domain.mXY + slope ** 2 * domain.mXX;
 	// y in step with x leaves rounding such as 1e-17 or -1e-17 of the terms, which is no spread.
 	const inside = within > size * 1e-14 ? within : 0;
-	// The zeros outside the domain pull the mean towards 0: that adds sum² (1/n_domain - 1/n).
-	return { sum, spread: inside + sum ** 2 * ((respondents - domain.n) / (respondents * domain.n)) };
+	return { sum, spread: withZeros(inside, [sum, sum], domain.n, respondents) };
+}
+
+/**
+ * Sum of products about the means over n respondents of the domain, taken over all respondents of the stratum: the zeros
+ * outside the domain pull both means towards 0, which adds the product of the sums times (1/n - 1/respondents).
+ */
+export function withZeros(inside: number, sums: [number, number], n: number, respondents: number): number {
+	return inside + sums[0] * sums[1] * ((respondents - n) / (respondents * n));
 }
 
 function requireStratum(stratum: DomainStratum, lone: LoneRespondent): void {

@@ -1,3 +1,5 @@
+import { sumOfProducts } from "#app/lib/precise.ts";
+
 /**
  * Count, sums and centred second moments of two quantities over a set of operations. `mYY` and `mXX` are sums of
  * squared deviations from the set's own means, `mXY` the sum of their products. Centred moments lose no digits when
@@ -23,8 +25,8 @@ export function addMoments(a: Moments, b: Moments): Moments {
 	if (a.n === 0) return pickMoments(b);
 	if (b.n === 0) return pickMoments(a);
 	const n = a.n + b.n;
-	const gapY = b.sumY / b.n - a.sumY / a.n;
-	const gapX = b.sumX / b.n - a.sumX / a.n;
+	const gapY = gapOfMeans(a.n, a.sumY, b.n, b.sumY);
+	const gapX = gapOfMeans(a.n, a.sumX, b.n, b.sumX);
 	const share = a.n * (b.n / n);
 	return {
 		n,
@@ -34,6 +36,18 @@ export function addMoments(a: Moments, b: Moments): Moments {
 		mXX: a.mXX + b.mXX + gapX * gapX * share,
 		mXY: a.mXY + b.mXY + gapY * gapX * share,
 	};
+}
+
+/**
+ * How far the mean of one set lies above another's. Two means of 1e9 that are 0.1 apart differ in their last digits only,
+ * so the sums are compared before they are divided.
+ */
+export function gapOfMeans(n: number, sum: number, otherN: number, otherSum: number): number {
+	const { high } = sumOfProducts([
+		[otherSum, n],
+		[sum, -otherN],
+	]);
+	return high / (n * otherN);
 }
 
 /** Adds the moments of any number of sets of different operations. @returns `emptyMoments` for none. */

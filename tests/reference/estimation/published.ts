@@ -44,9 +44,12 @@ export async function checkPublished(folder: string, file: string): Promise<Chec
 	return checked;
 }
 
-/** The value with as many decimals as the print. */
+/** The value with as many decimals as the print. One that lies halfway, to rounding, may have been printed either way. */
 function asPrinted(printed: Json | undefined, value: number): string {
-	return value.toFixed((String(printed).split(".")[1] ?? "").length);
+	const text = String(printed);
+	const decimals = (text.split(".")[1] ?? "").length;
+	const halfway = Math.abs(Math.abs(value - Number(text)) - 0.5 * 10 ** -decimals) < 1e-12 * Math.abs(value);
+	return halfway ? text : value.toFixed(decimals);
 }
 
 async function recompute(folder: string, data: string, call: string) {
