@@ -18,6 +18,8 @@ const files: [string, number][] = [
 	["synthetic_strata.csv", 309],
 	["synthetic_domains_expected.csv", 5586],
 	["synthetic_expected.json", 71],
+	["change_expected.csv", 1258],
+	["change_mean5_expected.json", 60],
 	["days_expected.csv", 432],
 ];
 

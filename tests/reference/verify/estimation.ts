@@ -1,9 +1,11 @@
 import { comparing } from "#tests/reference/checking.ts";
 import type { Checker } from "#tests/reference/verify/checker.ts";
+import { checkChange } from "#tests/reference/estimation/change.ts";
 import { checkDays } from "#tests/reference/estimation/days.ts";
 import { checkLoneRespondents } from "#tests/reference/estimation/lone.ts";
 import { checkPublished } from "#tests/reference/estimation/published.ts";
 import { checkNamedFigures } from "#tests/reference/estimation/schools.ts";
+import { checkSeasons } from "#tests/reference/estimation/seasons.ts";
 import {
 	checkSyntheticDomains,
 	checkSyntheticFigures,
@@ -18,5 +20,7 @@ export const checkers: Checker[] = [
 	comparing(/^synthetic_strata\.csv$/, checkSyntheticStrata),
 	comparing(/^synthetic_domains_expected\.csv$/, checkSyntheticDomains),
 	comparing(/^synthetic_expected\.json$/, checkSyntheticFigures),
+	comparing(/^change_expected\.csv$/, checkChange),
+	comparing(/^change_mean5_expected\.json$/, checkSeasons),
 	comparing(/^days_expected\.csv$/, checkDays),
 ];
