@@ -38,6 +38,7 @@ export default [
 	// Growers: one column, nothing but the question.
 	layout("routes/grower/layout.tsx", [
 		route("r/:token", "routes/grower/link.tsx"),
+		route("stop-mail/:token", "routes/grower/stop-mail.tsx"),
 		...prefix("answer/:surveyId/:operationId", [
 			index("routes/grower/start.tsx"),
 			route("ask/:screen", "routes/grower/screen.tsx"),

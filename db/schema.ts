@@ -146,6 +146,7 @@ export interface CollectMailing {
   queued_by: string | null;
   sent_at: Timestamp | null;
   survey_id: string;
+  tried_at: Timestamp | null;
   wave: Generated<number>;
 }
 
@@ -186,6 +187,16 @@ export interface CollectReleaseDraftCell {
   release_draft_id: string;
   respondents: number | null;
   status: string;
+}
+
+export interface CollectReminder {
+  cancelled_at: Timestamp | null;
+  remind_at: Timestamp;
+  sent_at: Timestamp | null;
+  set_at: Generated<Timestamp>;
+  set_by: string | null;
+  survey_id: string;
+  wave: number;
 }
 
 export interface CollectResponse {
@@ -265,6 +276,7 @@ export interface DirectoryOperation {
   email: string | null;
   language: Generated<string>;
   left_at: Timestamp | null;
+  mail_returned_at: Timestamp | null;
   mail_wanted: Generated<boolean>;
   mass_unit: Generated<string>;
   name: string;
@@ -419,6 +431,7 @@ export interface DB {
   "collect.personal_link": CollectPersonalLink;
   "collect.release_draft": CollectReleaseDraft;
   "collect.release_draft_cell": CollectReleaseDraftCell;
+  "collect.reminder": CollectReminder;
   "collect.response": CollectResponse;
   "collect.submission": CollectSubmission;
   "collect.survey": CollectSurvey;

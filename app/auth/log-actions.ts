@@ -6,7 +6,7 @@ export const logActions = {
 	grant: ["first_coordinator", "given", "revoked"],
 	access: ["requested", "approved", "declined"],
 	survey: ["created", "opened", "extended", "closed", "invited", "reminded", "link_replaced"],
-	operation: ["moved", "left"],
+	operation: ["moved", "left", "mail_stopped", "mail_resumed", "address_mended"],
 	response: ["started", "submitted", "amended", "withdrawn"],
 	release: ["drafted", "rejected", "published"],
 	report: ["started", "submitted", "sent_back", "published"],

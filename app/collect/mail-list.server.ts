@@ -1,9 +1,9 @@
 import type { Trx } from "#app/auth/scope.server.ts";
-import type { MailingFailure } from "./survey-mailing.server.ts";
+import type { MailingFailure, MailKind } from "./survey-mailing.server.ts";
 
 export type Mail = {
 	/** An invitation after the first is a new link that somebody asked for. */
-	kind: "invitation" | "new_link" | "reminder" | "receipt";
+	kind: MailKind | "new_link";
 	wave: number;
 	queuedAt: Date;
 	sentAt: Date | null;

@@ -3,10 +3,10 @@ import { sql } from "kysely";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
-import { queueJob } from "#app/jobs/queue.server.ts";
 import { writeFacts } from "#app/tally/facts.server.ts";
 import { findNewestSubmission, sameAnswers, type Submission } from "./answer-rows.server.ts";
 import type { Answer } from "./form.ts";
+import { queueMail } from "./mail-waves.server.ts";
 import { findHindrance, type Hindrance } from "./progress.ts";
 import { type AnswerPlace, lockAnswering } from "./responses.server.ts";
 import { keptAnswers } from "./steps.ts";
@@ -91,19 +91,27 @@ async function keepSubmission(
 		.execute();
 }
 
+/** None for an operation that no mail reaches: its receipt is on the screen. */
 async function queueReceipt(trx: Trx, viewer: Grower, place: AnswerPlace, version: number): Promise<void> {
-	const { mailing_id: mailingId } = await trx
+	const receipt = await trx
 		.insertInto("collect.mailing")
-		.values({
-			survey_id: place.surveyId,
-			operation_id: place.operationId,
-			kind: "receipt",
-			wave: version,
-			queued_by: viewer.person?.personId ?? null,
-		})
+		.columns(["survey_id", "operation_id", "kind", "wave", "queued_by"])
+		.expression((eb) =>
+			eb
+				.selectFrom("directory.operation as o")
+				.where("o.operation_id", "=", place.operationId)
+				.where(sql<boolean>`coalesce(o.email, '') <> '' and o.mail_returned_at is null`)
+				.select([
+					sql<string>`${place.surveyId}::uuid`.as("survey_id"),
+					"o.operation_id",
+					sql<string>`'receipt'`.as("kind"),
+					sql<number>`${version}::int`.as("wave"),
+					sql<string | null>`${viewer.person?.personId ?? null}::uuid`.as("queued_by"),
+				]),
+		)
 		.returning("mailing_id")
-		.executeTakeFirstOrThrow();
-	await queueJob(trx, "send_mail", { mailingId }, { jobKey: `send_mail:${mailingId}` });
+		.executeTakeFirst();
+	if (receipt) await queueMail(trx, receipt.mailing_id);
 }
 
 /** Without what is misread on paper or over the telephone: 0 O Q, 1 I L, 5 S, 8 B, 2 Z, U V. */

@@ -1,9 +1,25 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Words } from "./form.ts";
+import { markReturned } from "./reach.server.ts";
+
+export type MailKind = "invitation" | "reminder" | "receipt" | "thank_you";
 
 /** Why a mailing was given up: each has words on the desk's pages (`desk:mail_failure.<code>`). */
-export type MailingFailure = "returned" | "no_address" | "not_wanted" | "answered" | "survey_closed" | "replaced";
+export type MailingFailure =
+	| "returned"
+	| "no_address"
+	| "not_wanted"
+	| "answered"
+	| "not_answered"
+	| "survey_closed"
+	| "replaced"
+	/** Refused, not eligible, or out of the network. */
+	| "not_asked"
+	/** The process or the connection ended while the server had the mail: it may have gone out, and is not sent twice. */
+	| "uncertain"
+	/** The mail server took nothing for days. */
+	| "server_away";
 
 /** What sending one mailing needs to know, under scope network. @returns undefined for an unknown id. */
 export async function findMailing(trx: Trx, mailingId: string) {
@@ -13,6 +29,9 @@ export async function findMailing(trx: Trx, mailingId: string) {
 		.innerJoin("collect.form_version as v", "v.form_version_id", "s.form_version_id")
 		.innerJoin("directory.operation as o", "o.operation_id", "m.operation_id")
 		.innerJoin("directory.state as d", "d.state_fips", "o.state_fips")
+		.innerJoin("collect.frame_operation as f", (join) =>
+			join.onRef("f.survey_id", "=", "m.survey_id").onRef("f.operation_id", "=", "m.operation_id"),
+		)
 		.leftJoin("collect.response as r", (join) =>
 			join.onRef("r.survey_id", "=", "m.survey_id").onRef("r.operation_id", "=", "m.operation_id"),
 		)
@@ -23,8 +42,10 @@ export async function findMailing(trx: Trx, mailingId: string) {
 			"m.operation_id",
 			"m.kind",
 			"m.wave",
+			"m.tried_at",
 			"m.sent_at",
 			"m.failed_at",
+			"f.disposition",
 			"s.season",
 			"s.title",
 			"s.closes_at",
@@ -33,7 +54,10 @@ export async function findMailing(trx: Trx, mailingId: string) {
 			"o.name as operation_name",
 			"o.contact_name",
 			"o.email",
+			"o.county_fips",
+			"o.mail_returned_at",
 			"o.mail_wanted",
+			"o.status",
 			"o.language",
 			"d.time_zone",
 			"r.language as response_language",
@@ -55,31 +79,45 @@ export async function findMailing(trx: Trx, mailingId: string) {
 				.as("replaced"),
 		])
 		.executeTakeFirst();
-	return row && { ...row, kind: row.kind as "invitation" | "reminder" | "receipt", title: row.title as Words };
+	return row && { ...row, kind: row.kind as MailKind, title: row.title as Words };
 }
 export type Mailing = NonNullable<Awaited<ReturnType<typeof findMailing>>>;
 
-/** Why this mailing must not go out any more, if so. A receipt always goes: it tells what was received. */
+/**
+ * Why this mailing must not go out any more, if so. A receipt goes to whoever has an address: it was asked for by sending
+ * in, and tells what was received.
+ */
 export function reasonNotToSend(mailing: Mailing): MailingFailure | null {
 	if (!mailing.email) return "no_address";
+	if (mailing.mail_returned_at) return "returned";
 	if (mailing.kind === "receipt") return null;
 	if (!mailing.mail_wanted) return "not_wanted";
+	if (mailing.status === "left") return "not_asked";
+	if (mailing.kind === "thank_you") return mailing.submitted_at ? null : "not_answered";
 	if (mailing.submitted_at || mailing.withdrawn_at) return "answered";
 	if (!mailing.is_open) return "survey_closed";
+	if (mailing.disposition === "refused" || mailing.disposition === "not_eligible") return "not_asked";
 	if (mailing.replaced) return "replaced";
 	return null;
 }
 
-/** Takes the mailing for sending until the transaction ends. @returns false when it was sent or given up meanwhile. */
-export async function lockUnsentMailing(trx: Trx, mailingId: string): Promise<boolean> {
-	// Weaker than FOR UPDATE, so that writing a link of this mailing need not wait for the mail server.
-	const row = await trx
-		.selectFrom("collect.mailing")
-		.select(["sent_at", "failed_at"])
+/**
+ * Takes the mailing for one attempt, until the transaction ends or its process dies; whoever comes meanwhile leaves it.
+ * A lock beside the row and not on it, since that the attempt began is written on the row and must outlive the process.
+ */
+export async function takeMailing(trx: Trx, mailingId: string): Promise<boolean> {
+	const { rows } = await sql<{ taken: boolean }>`select
+		pg_try_advisory_xact_lock(hashtextextended(${`send_mail:${mailingId}`}, 0)) as taken`.execute(trx);
+	return rows[0]?.taken === true;
+}
+
+/** Notes that the mail server is about to get it, or (false) that it surely took nothing. */
+export async function markMailingTried(trx: Trx, mailingId: string, tried: boolean): Promise<void> {
+	await trx
+		.updateTable("collect.mailing")
+		.set({ tried_at: tried ? sql`now()` : null })
 		.where("mailing_id", "=", mailingId)
-		.forNoKeyUpdate()
-		.executeTakeFirst();
-	return row !== undefined && row.sent_at === null && row.failed_at === null;
+		.execute();
 }
 
 export async function markMailingSent(trx: Trx, mailingId: string, messageId: string): Promise<void> {
@@ -90,19 +128,15 @@ export async function markMailingSent(trx: Trx, mailingId: string, messageId: st
 		.execute();
 }
 
-/** Gives a mailing up. An address that took no mail also leaves its operation undeliverable, for the desk to mend. */
+/** Gives a mailing up. An address that took no mail is marked, and its operation undeliverable, for the desk to mend. */
 export async function markMailingFailed(trx: Trx, mailing: Mailing, failure: MailingFailure): Promise<void> {
 	await trx
 		.updateTable("collect.mailing")
 		.set({ failed_at: sql`now()`, failure })
 		.where("mailing_id", "=", mailing.mailing_id)
+		.where("sent_at", "is", null)
 		.execute();
 	if (failure !== "returned") return;
-	await trx
-		.updateTable("collect.frame_operation")
-		.set({ disposition: "undeliverable", disposition_at: sql`now()` })
-		.where("survey_id", "=", mailing.survey_id)
-		.where("operation_id", "=", mailing.operation_id)
-		.where("disposition", "=", "not_reached")
-		.execute();
+	const { survey_id: surveyId, operation_id: operationId } = mailing;
+	await markReturned(trx, { surveyId, operationId, email: mailing.email ?? "" });
 }

@@ -11,7 +11,7 @@ export type OwnSettings = {
 	language: "en" | "es";
 	/** One of the units of weight that the survey forms know. */
 	massUnit: string;
-	/** Whether invitations and reminders are sent; a receipt is sent in either case. */
+	/** Whether invitations, reminders and thank-yous are sent; a receipt is sent in either case. */
 	mailWanted: boolean;
 };
 
@@ -20,7 +20,7 @@ export async function findOwnSettings(trx: Trx, viewer: Grower, operationId: str
 	if (!operation) return undefined;
 	const row = await trx
 		.selectFrom("directory.operation")
-		.select(["contact_name", "email", "phone", "language", "mass_unit", "mail_wanted"])
+		.select(["contact_name", "email", "phone", "language", "mass_unit", "mail_wanted", "mail_returned_at"])
 		.where("operation_id", "=", operationId)
 		.executeTakeFirstOrThrow();
 	const settings: OwnSettings = {
@@ -31,16 +31,18 @@ export async function findOwnSettings(trx: Trx, viewer: Grower, operationId: str
 		massUnit: row.mass_unit,
 		mailWanted: row.mail_wanted,
 	};
-	return { operation, settings };
+	return { operation, settings, mailReturned: row.mail_returned_at !== null };
 }
 
+/** Saves a grower's settings. `address_mended` says that mail can be tried again which came back from the former address. */
 export async function saveOwnSettings(
 	trx: Trx,
 	viewer: Grower,
 	operationId: string,
 	settings: OwnSettings,
-): Promise<"saved" | "not_found"> {
-	if (!(await findOwnOperation(trx, viewer, operationId))) return "not_found";
+): Promise<"saved" | "address_mended" | "not_found"> {
+	const standing = await findOwnSettings(trx, viewer, operationId);
+	if (!standing) return "not_found";
 	await trx
 		.updateTable("directory.operation")
 		.set({
@@ -54,5 +56,5 @@ export async function saveOwnSettings(
 		})
 		.where("operation_id", "=", operationId)
 		.execute();
-	return "saved";
+	return settings.email !== standing.settings.email ? "address_mended" : "saved";
 }

@@ -4,6 +4,7 @@ import { data } from "react-router";
 const statusOf = {
 	sign_in_needed: 401,
 	link_not_valid: 404,
+	stop_link_not_valid: 404,
 	link_session_over: 401,
 	survey_closed: 410,
 	role_needed: 403,

@@ -1,38 +1,58 @@
 /** One paragraph of a letter: plain words, or a link that stands out as a button. */
 export type Paragraph = string | { link: string; label: string };
-export type Letter = { language: string; subject: string; heading: string; paragraphs: Paragraph[]; footer: string };
+export type Letter = {
+	language: string;
+	subject: string;
+	heading: string;
+	paragraphs: Paragraph[];
+	footer: string;
+	/** The last line: where mail of this kind is stopped. */
+	stop: { link: string; label: string } | null;
+};
 
 /** The letter as plain text: what a reader without HTML sees, with every address written out. */
-export function asText({ paragraphs, footer }: Letter): string {
+export function asText({ paragraphs, footer, stop }: Letter): string {
 	const body = paragraphs.map((paragraph) =>
 		typeof paragraph === "string" ? paragraph : `${paragraph.label}:\n${paragraph.link}`,
 	);
-	return `${[...body, "-- ", footer].join("\n\n").replace("-- \n\n", "-- \n")}\n`;
+	const ending = stop ? [footer, `${stop.label}:`, stop.link] : [footer];
+	return `${[...body, ["-- ", ...ending].join("\n")].join("\n\n")}\n`;
 }
 
-/** The letter as HTML, in one column, readable without pictures and with styles off. Every word in it is escaped. */
-export function asHtml({ language, subject, heading, paragraphs, footer }: Letter): string {
+/**
+ * The letter as HTML, in one column, readable without pictures and with styles off. Every word in it is escaped. Colours
+ * stand inline, as many programs drop style sheets; those that keep them, and are set to dark, get dark ones.
+ */
+export function asHtml({ language, subject, heading, paragraphs, footer, stop }: Letter): string {
 	const body = paragraphs.map((paragraph) =>
 		typeof paragraph === "string" ? `<p style="${style.text}">${withBreaks(paragraph)}</p>` : button(paragraph),
 	);
+	const end = stop ? `<br>${anchor(stop, stop.label)}` : "";
 	return [
 		`<!doctype html>`,
 		`<html lang="${escapeHtml(language)}">`,
-		`<head><meta charset="utf-8"><meta name="viewport" content="width=device-width"><title>${escapeHtml(subject)}</title></head>`,
-		`<body style="${style.page}"><div style="${style.column}">`,
+		`<head><meta charset="utf-8"><meta name="viewport" content="width=device-width, initial-scale=1">`,
+		`<meta name="color-scheme" content="light dark"><meta name="supported-color-schemes" content="light dark">`,
+		`<title>${escapeHtml(subject)}</title><style>${dark}</style></head>`,
+		`<body class="page" style="${style.page}"><div lang="${escapeHtml(language)}" style="${style.column}">`,
 		`<h1 style="${style.heading}">${escapeHtml(heading)}</h1>`,
 		...body,
-		`<p style="${style.footer}">${withBreaks(footer)}</p>`,
+		`<p class="footer" style="${style.footer}">${withBreaks(footer)}${end}</p>`,
 		`</div></body></html>`,
 	].join("\n");
 }
 
+/** A link that stands out, with its address written out below for who reads on another device. */
 function button({ link, label }: { link: string; label: string }): string {
 	const address = escapeHtml(link);
 	return [
-		`<p style="${style.text}"><a href="${address}" style="${style.button}">${escapeHtml(label)}</a></p>`,
-		`<p style="${style.small}"><a href="${address}" style="${style.link}">${address}</a></p>`,
+		`<p style="${style.text}"><a class="button" href="${address}" style="${style.button}">${escapeHtml(label)}</a></p>`,
+		`<p style="${style.small}">${anchor({ link }, link)}</p>`,
 	].join("\n");
+}
+
+function anchor({ link }: { link: string }, words: string): string {
+	return `<a class="link" href="${escapeHtml(link)}" style="${style.link}">${escapeHtml(words)}</a>`;
 }
 
 export function escapeHtml(text: string): string {
@@ -62,3 +82,10 @@ const style = {
 		"display:inline-block;background:#5B2A5E;color:#ffffff;text-decoration:none;padding:14px 22px;border-radius:4px;font-weight:bold",
 	footer: `${font};font-size:14px;line-height:1.5;color:#4A5752;border-top:1px solid #C9D2CD;margin:24px 0 0;padding-top:12px`,
 };
+/** Only with these does a program that darkens mail keep plum on black readable. */
+const dark = `@media (prefers-color-scheme: dark) {
+.page { background: #141B18 !important; color: #E4EAE7 !important; }
+.footer { color: #B3BFBA !important; border-top-color: #3A4742 !important; }
+.link { color: #D9A9DC !important; }
+.button { background: #D9A9DC !important; color: #1E2A26 !important; }
+}`;

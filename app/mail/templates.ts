@@ -1,10 +1,13 @@
 import type { TFunction } from "i18next";
 import type { Formatter } from "#app/lib/format.ts";
-import type { Letter } from "./letter.ts";
+import type { Letter, Paragraph } from "./letter.ts";
 
-/** What the three letters to a grower are filled from; every field is plain text. */
+export const letterKinds = ["invitation", "reminder", "receipt", "thank_you"] as const;
+export type LetterKind = (typeof letterKinds)[number];
+
+/** What the letters to a grower are filled from; every field is plain text. */
 export type LetterFields = {
-	kind: "invitation" | "reminder" | "receipt";
+	kind: LetterKind;
 	language: "en" | "es";
 	network: string;
 	contactName: string;
@@ -14,15 +17,39 @@ export type LetterFields = {
 	minutes: number;
 	closesAt: Date;
 	timeZone: string;
-	/** The personal link; a receipt has none, as the answers can be amended through the link that is already there. */
+	/** The personal link, or the comparison's; a receipt has none, as the link that is already there works on. */
 	link: string | null;
+	/** The published map at the operation's county. */
+	mapLink: string;
+	/** Where mail of this kind is stopped; null where it was asked for. */
+	stopAddress: string | null;
 	receipt: { code: string; submittedAt: Date } | null;
 };
 
-/** Writes the letter of a mailing. Its words are `mail:<kind>.…`, one paragraph a key, in the order of `paragraphKeys`. */
+/** Writes the letter of a mailing. Its words are `mail:<kind>.…`, one paragraph a key. */
 export function writeLetter(fields: LetterFields, t: TFunction, format: Formatter): Letter {
-	const { kind, receipt, timeZone } = fields;
-	const values = {
+	const { kind, link, mapLink, stopAddress } = fields;
+	const values = valuesOf(fields, format);
+	const say = (key: string) => t(`mail:${kind}.${key}`, values);
+	const button: Paragraph[] = link ? [{ link, label: t(`mail:${kind}.button`) }] : [];
+	const greeting = fields.contactName ? t("mail:greeting", values) : t("mail:greeting_unnamed");
+	const body: Paragraph[] =
+		kind === "thank_you"
+			? [say("what"), ...button, say("sign_in"), { link: mapLink, label: t("mail:thank_you.map") }, say("help")]
+			: [say("what"), ...button, say("until"), say("pledge"), say("help")];
+	return {
+		language: fields.language,
+		subject: say("subject"),
+		heading: say("heading"),
+		paragraphs: [greeting, ...body],
+		footer: [t("mail:footer", values), stopAddress ? t("mail:stop.why") : t("mail:stop.receipt")].join("\n"),
+		stop: stopAddress ? { link: stopAddress, label: t("mail:stop.link") } : null,
+	};
+}
+
+function valuesOf(fields: LetterFields, format: Formatter) {
+	const { receipt, timeZone } = fields;
+	return {
 		network: fields.network,
 		contact: fields.contactName,
 		operation: fields.operationName,
@@ -32,15 +59,5 @@ export function writeLetter(fields: LetterFields, t: TFunction, format: Formatte
 		code: receipt?.code ?? "",
 		submitted: receipt ? format.moment(receipt.submittedAt, timeZone) : "",
 		count: fields.minutes,
-	};
-	const say = (key: string) => t(`mail:${kind}.${key}`, values);
-	const button = fields.link ? [{ link: fields.link, label: t(`mail:${kind}.button`) }] : [];
-	const greeting = fields.contactName ? t("mail:greeting", values) : t("mail:greeting_unnamed");
-	return {
-		language: fields.language,
-		subject: say("subject"),
-		heading: say("heading"),
-		paragraphs: [greeting, say("what"), ...button, say("until"), say("pledge"), say("help")],
-		footer: t("mail:footer", values),
 	};
 }

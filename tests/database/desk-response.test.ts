@@ -2,7 +2,7 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { Answer } from "#app/collect/form.ts";
-import { sendNewLink } from "#app/collect/invitations.server.ts";
+import { sendNewLink } from "#app/collect/new-link.server.ts";
 import { listOperationSurveys } from "#app/collect/operation-surveys.server.ts";
 import { createPersonalLink, findLink } from "#app/collect/personal-link.server.ts";
 import { findResponse } from "#app/collect/response-view.server.ts";

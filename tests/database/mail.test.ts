@@ -1,24 +1,18 @@
-import type { AddressInfo } from "node:net";
-import { simpleParser, type ParsedMail } from "mailparser";
 import type { Client } from "pg";
-import { SMTPServer } from "smtp-server";
 import { afterAll, beforeAll, beforeEach, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
-import { sendInvitations, sendNewLink } from "#app/collect/invitations.server.ts";
+import { sendNewLink } from "#app/collect/new-link.server.ts";
 import { findLink } from "#app/collect/personal-link.server.ts";
-import { openSurvey } from "#app/collect/survey-opening.server.ts";
-import { createSurvey } from "#app/collect/surveys.server.ts";
 import { sendMail } from "#app/jobs/send-mail.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
+import { findMailingRow, inviteGrower, startMailServer, tokenIn } from "./mail-fixture.ts";
 import {
-	addOperation,
 	addPerson,
 	answerFor,
 	asDesk,
 	connectOwner,
 	count,
-	draftOf,
 	loadPlaces,
 	type NewOperation,
 	useDatabase,
@@ -28,69 +22,31 @@ let database: Awaited<ReturnType<typeof createTestDatabase>>;
 let owner: Client;
 let iowa: Associate;
 
-// A real mail server on a free port that can be told to answer with trouble, and keeps what it took.
-let received: ParsedMail[] = [];
-let trouble: { at: "from" | "to" | "data"; code: number } | null = null;
-const answerOf = (at: "from" | "to" | "data") =>
-	trouble?.at === at ? Object.assign(new Error("no"), { responseCode: trouble.code }) : null;
-const server = new SMTPServer({
-	authOptional: true,
-	disabledCommands: ["STARTTLS"],
-	onMailFrom: (_address, _session, done) => done(answerOf("from")),
-	onRcptTo: (_address, _session, done) => done(answerOf("to")),
-	onData(stream, _session, done) {
-		void simpleParser(stream).then((mail) => {
-			if (!answerOf("data")) received.push(mail);
-			done(answerOf("data"));
-		});
-	},
-});
+let mailServer: Awaited<ReturnType<typeof startMailServer>>;
 
 beforeAll(async () => {
-	await new Promise<void>((resolve) => server.listen(0, "127.0.0.1", resolve));
-	const { port } = server.server.address() as AddressInfo;
+	mailServer = await startMailServer();
 	database = await createTestDatabase();
-	useDatabase(database, { SMTP_URL: `smtp://127.0.0.1:${port}` });
+	useDatabase(database, { SMTP_URL: mailServer.url });
 	owner = await connectOwner(database.ownerUrl);
 	await loadPlaces(owner);
 	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
 });
 afterAll(async () => {
-	await new Promise<void>((resolve) => server.close(() => resolve()));
+	await mailServer.stop();
 	await owner.end();
 	await database.drop();
 });
-beforeEach(() => {
-	received = [];
-	trouble = null;
-});
+beforeEach(() => void mailServer.reset());
 
-/** An open survey of its own with one grower invited; nothing sent yet. */
-async function invitedGrower(operation: Partial<NewOperation> = {}) {
-	await owner.query("update directory.operation set status = 'left'");
-	const operationId = await addOperation(owner, { state: "19", ...operation });
-	const made = await asDesk(iowa, (trx) => createSurvey(trx, iowa, draftOf(["19"])));
-	const { surveyId } = made as { surveyId: string };
-	await asDesk(iowa, (trx) => openSurvey(trx, iowa, surveyId));
-	await asDesk(iowa, (trx) => sendInvitations(trx, iowa, surveyId));
-	const { rows } = await owner.query("select mailing_id from collect.mailing where survey_id = $1", [surveyId]);
-	return { operationId, surveyId, mailingId: rows[0].mailing_id as string };
-}
-async function mailingOf(mailingId: string) {
-	const { rows } = await owner.query(
-		`select m.*, f.disposition from collect.mailing m join collect.frame_operation f using (survey_id, operation_id)
-		where mailing_id = $1`,
-		[mailingId],
-	);
-	return rows[0];
-}
-const tokenIn = (mail: ParsedMail) => /https:\/\/survey\.example\/r\/([\w-]+)/.exec(mail.text ?? "")?.[1] ?? "";
+const invitedGrower = (operation: Partial<NewOperation> = {}) => inviteGrower(owner, iowa, operation);
+const mailingOf = (mailingId: string) => findMailingRow(owner, mailingId);
 const linkOf = (token: string) => scopedTransaction({ kind: "network" }, (trx) => findLink(trx, token));
 
 test("an invitation carries a link that opens this operation's answers, with headers that name a machine as sender", async () => {
 	const { mailingId, operationId, surveyId } = await invitedGrower();
 	await sendMail({ mailingId });
-	const [mail] = received;
+	const [mail] = mailServer.received;
 	expect(mail?.to).toMatchObject({ value: [{ name: "Ada Quill", address: "ada@quailbend.example" }] });
 	expect(mail?.from?.value).toEqual([{ name: "Four Rivers Fruit Network", address: "survey@fourrivers.example" }]);
 	expect(mail?.messageId).toBe(`<${mailingId}@survey.example>`);
@@ -110,18 +66,20 @@ test("a job that runs twice, also at the same moment, sends one mail", async () 
 	const { mailingId } = await invitedGrower();
 	await Promise.all([sendMail({ mailingId }), sendMail({ mailingId })]);
 	await sendMail({ mailingId });
-	expect(received).toHaveLength(1);
+	expect(mailServer.received).toHaveLength(1);
 });
 
 test("a grower who reads Spanish is written to in Spanish, with the survey's Spanish title", async () => {
 	const { mailingId } = await invitedGrower({ language: "es", contact: "Rogelio Peñalba", name: "Huerta Peñalba" });
 	await sendMail({ mailingId });
-	const [mail] = received;
+	const [mail] = mailServer.received;
 	expect(mail?.subject).toBe("Después de la cosecha, temporada 2031: ¿cómo le fue a Huerta Peñalba?");
 	expect(mail?.text).toContain("Hola, Rogelio Peñalba:");
 	expect(mail?.headers.get("content-language")).toBe("es");
 	expect(mail?.html).toContain('<html lang="es">');
 	expect(mail?.text).not.toMatch(/\{\{|invitation\./);
+	// The closing time on the operation's clock, with the zone said.
+	expect(mail?.text).toMatch(/hasta el \d+ de \p{L}+ de \d{4} a las 5:00\sp\.m\. (CST|CDT)\./u);
 });
 
 test("a name can neither add a header nor a mark-up to the mail", async () => {
@@ -130,7 +88,7 @@ test("a name can neither add a header nor a mark-up to the mail", async () => {
 		contact: 'Ada "Q"\r\nBcc: spy@elsewhere.example',
 	});
 	await sendMail({ mailingId });
-	const [mail] = received;
+	const [mail] = mailServer.received;
 	expect(mail?.headers.has("bcc")).toBe(false);
 	expect(mail?.subject).toContain("Sons Bcc: spy@elsewhere.example");
 	expect(mail?.html).toContain("Bend &lt;script&gt;alert(1)&lt;/script&gt; &amp; Sons");
@@ -140,13 +98,13 @@ test("a name can neither add a header nor a mark-up to the mail", async () => {
 
 test("an answer of 451 is tried again: the next try sends, and links of both tries work", async () => {
 	const { mailingId } = await invitedGrower();
-	trouble = { at: "data", code: 451 };
+	mailServer.trouble = { at: "data", code: 451 };
 	await expect(sendMail({ mailingId })).rejects.toThrow();
 	expect(await mailingOf(mailingId)).toMatchObject({ sent_at: null, failed_at: null, disposition: "not_reached" });
-	trouble = null;
+	mailServer.trouble = null;
 	await sendMail({ mailingId });
-	expect(received).toHaveLength(1);
-	expect(await linkOf(tokenIn(received[0]!))).toBeDefined();
+	expect(mailServer.received).toHaveLength(1);
+	expect(await linkOf(tokenIn(mailServer.received[0]!))).toBeDefined();
 	expect(await count(owner, "collect.personal_link where mailing_id = $1 and replaced_at is null", [mailingId])).toBe(
 		2,
 	);
@@ -154,21 +112,21 @@ test("an answer of 451 is tried again: the next try sends, and links of both tri
 
 test("an address that the server refuses with 550 is given up and its operation marked undeliverable", async () => {
 	const { mailingId } = await invitedGrower();
-	trouble = { at: "to", code: 550 };
+	mailServer.trouble = { at: "to", code: 550 };
 	await sendMail({ mailingId });
 	expect(await mailingOf(mailingId)).toMatchObject({
 		sent_at: null,
 		failure: "returned",
 		disposition: "undeliverable",
 	});
-	trouble = null;
+	mailServer.trouble = null;
 	await sendMail({ mailingId });
-	expect(received).toHaveLength(0);
+	expect(mailServer.received).toHaveLength(0);
 });
 
 test("a 553 to our own sender is no fault of the grower: it is tried again", async () => {
 	const { mailingId } = await invitedGrower();
-	trouble = { at: "from", code: 553 };
+	mailServer.trouble = { at: "from", code: 553 };
 	await expect(sendMail({ mailingId })).rejects.toThrow();
 	expect(await mailingOf(mailingId)).toMatchObject({ failed_at: null, disposition: "not_reached" });
 });
@@ -177,7 +135,7 @@ test("who has answered meanwhile gets no invitation any more", async () => {
 	const { mailingId, surveyId, operationId } = await invitedGrower();
 	await answerFor(owner, surveyId, operationId);
 	await sendMail({ mailingId });
-	expect(received).toHaveLength(0);
+	expect(mailServer.received).toHaveLength(0);
 	expect(await mailingOf(mailingId)).toMatchObject({ sent_at: null, failure: "answered", disposition: "complete" });
 });
 
@@ -185,12 +143,12 @@ test("an older invitation still in the queue is dropped when a new link was aske
 	const { mailingId, surveyId, operationId } = await invitedGrower();
 	await asDesk(iowa, (trx) => sendNewLink(trx, iowa, surveyId, operationId, 2));
 	await sendMail({ mailingId });
-	expect(received).toHaveLength(0);
+	expect(mailServer.received).toHaveLength(0);
 	const { rows } = await owner.query("select mailing_id from collect.mailing where survey_id = $1 and wave = 2", [
 		surveyId,
 	]);
 	await sendMail({ mailingId: rows[0].mailing_id });
-	expect(await linkOf(tokenIn(received[0]!))).toMatchObject({ operationId });
+	expect(await linkOf(tokenIn(mailServer.received[0]!))).toMatchObject({ operationId });
 	expect(await mailingOf(mailingId)).toMatchObject({ failure: "replaced" });
 });
 
@@ -202,7 +160,7 @@ test("a receipt goes out after answering, in the language of the answers, with t
 		[surveyId, operationId],
 	);
 	await sendMail({ mailingId: rows[0].mailing_id });
-	const [mail] = received;
+	const [mail] = mailServer.received;
 	expect(mail?.subject).toContain(`recibo ${code}`);
 	expect(mail?.text).toContain(code);
 	expect(mail?.text).not.toContain("/r/");
@@ -213,6 +171,6 @@ test("a closed survey sends no invitation, and an unknown mailing nothing at all
 	await owner.query("update collect.survey set closed_at = now() where survey_id = $1", [surveyId]);
 	await sendMail({ mailingId });
 	await sendMail({ mailingId: "00000000-0000-4000-8000-000000000000" });
-	expect(received).toHaveLength(0);
+	expect(mailServer.received).toHaveLength(0);
 	expect(await mailingOf(mailingId)).toMatchObject({ failure: "survey_closed" });
 });

@@ -2,7 +2,8 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { countMailings, sendInvitations, sendNewLink, sendReminders } from "#app/collect/invitations.server.ts";
+import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
+import { sendNewLink } from "#app/collect/new-link.server.ts";
 import { listOwnConsents } from "#app/collect/own-consents.server.ts";
 import { findMailing, reasonNotToSend } from "#app/collect/survey-mailing.server.ts";
 import { findOwnSettings, type OwnSettings, saveOwnSettings } from "#app/directory/own-settings.server.ts";
@@ -42,6 +43,7 @@ const read = (operationId: string, viewer = growerOf(operationId)) =>
 
 test("settings are read back as they were saved, and a survey follows them", async () => {
 	const { place, grower } = await askGrower(owner, iowa);
+	expect(await save(place.operationId, settings())).toBe("address_mended");
 	expect(await save(place.operationId, settings())).toBe("saved");
 	expect((await read(place.operationId))?.settings).toEqual(settings());
 	expect(await answeringOf(grower, place)).toMatchObject({ language: "es", massUnit: "kg" });

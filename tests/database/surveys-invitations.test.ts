@@ -2,7 +2,8 @@ import { sql } from "kysely";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { Client } from "pg";
 import type { Associate } from "#app/auth/viewer.ts";
-import { countMailings, sendInvitations, sendNewLink, sendReminders } from "#app/collect/invitations.server.ts";
+import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
+import { sendNewLink } from "#app/collect/new-link.server.ts";
 import { createPersonalLink, findLink } from "#app/collect/personal-link.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
@@ -110,6 +111,8 @@ test("Iowa's associate reaches nobody in Wisconsin, not even with the operation'
 });
 
 test("a reminder goes once a wave to those invited who have not answered", async () => {
+	expect(await remind(iowa, 1)).toEqual({ queued: 0 }); // the invitation has not gone out yet
+	await owner.query("update collect.mailing set sent_at = now() where survey_id = $1", [surveyId]);
 	const { reminderWave } = await asDesk(iowa, (trx) => countMailings(trx, iowa, surveyId));
 	expect(reminderWave).toBe(1);
 	expect(await remind(iowa, 1)).toEqual({ queued: 1 });

@@ -50,6 +50,7 @@ const open: Record<string, string> = {
 	"collect.form": "which forms there are",
 	"collect.form_version": "questions, not answers",
 	"collect.survey": "what is asked, and until when",
+	"collect.reminder": "when a survey's reminders go",
 	"collect.survey_state": "which states a survey covers",
 };
 

@@ -4,7 +4,7 @@ import { z } from "zod";
 import type { Route } from "./+types/grower";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
-import { sendNewLink } from "#app/collect/invitations.server.ts";
+import { sendNewLink } from "#app/collect/new-link.server.ts";
 import { listOperationSurveys } from "#app/collect/operation-surveys.server.ts";
 import { DescriptionList } from "#app/components/description-list.tsx";
 import { Notice } from "#app/components/notice.tsx";

@@ -5,11 +5,13 @@ import { requireOrchard } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { listOwnConsents } from "#app/collect/own-consents.server.ts";
 import { pledgeVersion } from "#app/collect/pledge.ts";
+import { markReachable } from "#app/collect/reach.server.ts";
 import { unitsFor } from "#app/collect/units.ts";
 import { Button } from "#app/components/button.tsx";
 import { CheckField } from "#app/components/check-field.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
+import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
@@ -37,9 +39,11 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const grower = requireOrchard(context);
 	const form = parseForm(SettingsForm, await request.formData());
 	if (!form.ok) return data({ values: form.values, problems: form.problems }, { status: 400 });
-	const outcome = await grower.transaction((trx) =>
-		saveOwnSettings(trx, grower.viewer, params.operationId, form.value),
-	);
+	const outcome = await grower.transaction(async (trx) => {
+		const saved = await saveOwnSettings(trx, grower.viewer, params.operationId, form.value);
+		if (saved === "address_mended") await markReachable(trx, params.operationId);
+		return saved;
+	});
 	if (outcome === "not_found") throw refusal("orchard_not_found");
 	context.get(sessionContext).flash("toast", { key: "orchard:settings.saved" });
 	return redirect(href("/orchard/:operationId/settings", params), 303);
@@ -49,7 +53,7 @@ const fields = ["contactName", "email", "phone", "language", "massUnit", "mailWa
 
 export default function Settings({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("orchard");
-	const { operation, settings, consents } = loaderData;
+	const { operation, settings, consents, mailReturned } = loaderData;
 	const { values: sent, problems } = actionData ?? {};
 	const field = (name: (typeof fields)[number]) => {
 		const standing = settings[name];
@@ -69,6 +73,7 @@ export default function Settings({ loaderData, actionData }: Route.ComponentProp
 				problems={problems}
 				labels={Object.fromEntries(fields.map((name) => [name, t(`settings.${name}`)]))}
 			/>
+			{mailReturned && <Notice tone="attention">{t("settings.help.returned")}</Notice>}
 			<Form method="post" noValidate>
 				<TextField {...text("contactName")} autoComplete="name" size="full" maxLength={200} />
 				<TextField

@@ -109,14 +109,9 @@ export const exceptions: { from: string; to: string; because: string }[] = [
 		because: "whether a release rests on an answer is asked for a grower, who sees no draft of one",
 	},
 	{
-		from: "app/collect/invitations.server.ts",
+		from: "app/collect/mail-waves.server.ts",
 		to: "app/jobs/queue.server.ts",
 		because: "mail is queued in the transaction that decides it",
-	},
-	{
-		from: "app/collect/submission.server.ts",
-		to: "app/jobs/queue.server.ts",
-		because: "the receipt's mail is queued in the transaction that sends the answers in",
 	},
 	{
 		from: "app/collect/submission.server.ts",

@@ -1,0 +1,53 @@
+import type { Mailing } from "#app/collect/survey-mailing.server.ts";
+import { wordsIn } from "#app/i18n/language.ts";
+import { env } from "#app/lib/env.server.ts";
+import { formatterFor } from "#app/lib/format.ts";
+import { asHtml, asText } from "#app/mail/letter.ts";
+import { stopAddressOf } from "#app/mail/stop-token.server.ts";
+import { writeLetter } from "#app/mail/templates.ts";
+import { messageIdOf, type OutgoingMail, senderName } from "#app/mail/transport.server.ts";
+import { mailWords } from "#app/mail/words.server.ts";
+
+/**
+ * A mailing as it goes out, in the language the grower answered in, or is known to read, with times on the clock of the
+ * operation's state.
+ * @param link the personal link of an invitation or a reminder; other mail has none.
+ */
+export async function composeMail(mailing: Mailing, link: string | null): Promise<OutgoingMail> {
+	const language = (mailing.response_language ?? mailing.language) === "es" ? "es" : "en";
+	const t = await mailWords(language);
+	// A receipt was asked for by sending in: it is no mail that one stops.
+	const stopAddress = mailing.kind === "receipt" ? null : stopAddressOf(mailing.operation_id);
+	const letter = writeLetter(
+		{
+			kind: mailing.kind,
+			language,
+			network: senderName(),
+			contactName: mailing.contact_name,
+			operationName: mailing.operation_name,
+			surveyTitle: wordsIn(mailing.title, language),
+			season: mailing.season,
+			minutes: mailing.minutes,
+			closesAt: mailing.closes_at,
+			timeZone: mailing.time_zone,
+			link: mailing.kind === "thank_you" ? `${env().BASE_URL}/orchard/compare/${mailing.survey_id}` : link,
+			mapLink: `${env().BASE_URL}/map?area=${mailing.county_fips}`,
+			stopAddress,
+			receipt:
+				mailing.receipt_code && mailing.submitted_at
+					? { code: mailing.receipt_code, submittedAt: mailing.submitted_at }
+					: null,
+		},
+		t,
+		formatterFor(language, t),
+	);
+	return {
+		to: { name: mailing.contact_name, address: mailing.email ?? "" },
+		subject: letter.subject,
+		text: asText(letter),
+		html: asHtml(letter),
+		language,
+		messageId: messageIdOf(mailing.mailing_id),
+		stopAddress,
+	};
+}
