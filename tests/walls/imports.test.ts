@@ -50,6 +50,7 @@ const sound: Record<string, string> = {
 	"app/auth/guard.server.ts": `import { scopedTransaction } from "./scope.server.ts"; export const requirePerson = 1;`,
 	"app/directory/crops.ts": `export type Crop = string; export const crops = [];`,
 	"app/collect/answers.server.ts": `import type { Crop } from "#app/directory/crops.ts"; import { type Trx } from "#app/auth/scope.server.ts";`,
+	"app/review/findings.server.ts": `import type { Crop } from "#app/directory/crops.ts"; import { type Trx } from "#app/auth/scope.server.ts";`,
 	"app/estimate/ratio.ts": `import { sum } from "#app/lib/sum.ts"; export const at = new Date(0);`,
 	"app/protect/shares.server.ts": `import type { DB } from "#db/schema.ts";`,
 	"app/release/publish.server.ts": `export type Released = 1;`,
@@ -104,6 +105,16 @@ describe("the checker", () => {
 			"a stage importing a type from its right",
 			{ "app/collect/a.ts": `import { type Released } from "#app/release/publish.server.ts";` },
 			"app/collect/a.ts imports types of app/release",
+		],
+		[
+			"review importing a type of the tallies to its right",
+			{ "app/review/a.ts": `import type { Tally } from "#app/tally/tally.ts";` },
+			"app/review/a.ts imports types of app/tally",
+		],
+		[
+			"a clock in a check of review",
+			{ "app/review/a.ts": `export const now = () => Date.now();` },
+			"app/review/a.ts uses Date.now",
 		],
 		[
 			"a stage queuing jobs without a reason",

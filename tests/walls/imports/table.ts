@@ -5,7 +5,7 @@
 export type Row = { folder: string; values: string[]; types: string[] };
 
 /** The one-way flow, left to right. */
-const flow = ["directory", "collect", "tally", "estimate", "protect", "release", "publish"] as const;
+const flow = ["directory", "collect", "review", "tally", "estimate", "protect", "release", "publish"] as const;
 type Stage = (typeof flow)[number];
 
 const stages = flow.map((stage) => `app/${stage}/`);
@@ -37,6 +37,7 @@ export const table: Row[] = [
 
 	stage("directory"),
 	stage("collect"),
+	stage("review"),
 	pureStage("tally"),
 	pureStage("estimate"),
 	pureStage("protect"),
@@ -150,7 +151,7 @@ export const guardFile = "app/auth/guard.server.ts";
 export const readersGuards = ["requirePerson", "requireResearcher", "dataroomGuard"];
 
 /** Figures only: no server, clock, chance or page, in the files themselves and in all that they import. */
-export const pureFolders = ["app/estimate/", "app/protect/"];
+export const pureFolders = ["app/review/", "app/estimate/", "app/protect/"];
 
 /** Files of which the build takes the server's part away, or that no browser is ever given. */
 export const holdsServerCode =
