@@ -17,7 +17,7 @@ export type LoneRespondent = "refuse" | "certain" | "from_zero" | "as_others";
  * @param residual turns y and x into e (`linearize`).
  * @returns variance in units of (y / scale) squared; never negative, never NaN.
  * @throws {RangeError} when a stratum has no weight or no respondents, fewer respondents than its domain, or one
- *   respondent of several under `refuse`.
+ *   respondent of several under `refuse`; under `as_others` when there are no others.
  * Source: Särndal, Swensson and Wretman, Model Assisted Survey Sampling (1992), chapters 3 and 5, from memory. Checked
  * against R survey 4.1-1 (`svytotal`, `svymean`, `svyratio`) in tests/reference.
  */
@@ -39,6 +39,9 @@ export function linearizedVariance(
 		if (respondents > 1) variance += factor * (respondents / (respondents - 1)) * spread;
 		else if (lone === "from_zero") variance += factor * sum ** 2;
 		else if (lone === "as_others" && domain.n > 0) loneStrata += 1;
+	}
+	if (loneStrata > 0 && loneStrata === domainStrata) {
+		throw new RangeError("every stratum has one respondent: there are no others to take a variance from");
 	}
 	return loneStrata > 0 ? (variance * domainStrata) / (domainStrata - loneStrata) : variance;
 }

@@ -21,6 +21,11 @@ const files: [string, number][] = [
 	["change_expected.csv", 1258],
 	["change_mean5_expected.json", 60],
 	["days_expected.csv", 432],
+	["review_hb_effects.csv", 408],
+	["review_hb_expected.csv", 231],
+	["review_z_expected.csv", 512],
+	["review_unit_slip.csv", 350],
+	["allocation_expected.csv", 45],
 ];
 
 describe("published and recomputed estimates", () => {

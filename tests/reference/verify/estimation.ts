@@ -1,10 +1,17 @@
 import { comparing } from "#tests/reference/checking.ts";
 import type { Checker } from "#tests/reference/verify/checker.ts";
+import { checkAllocation } from "#tests/reference/estimation/allocation.ts";
 import { checkChange } from "#tests/reference/estimation/change.ts";
 import { checkDays } from "#tests/reference/estimation/days.ts";
 import { checkLoneRespondents } from "#tests/reference/estimation/lone.ts";
 import { checkPublished } from "#tests/reference/estimation/published.ts";
 import { checkNamedFigures } from "#tests/reference/estimation/schools.ts";
+import {
+	checkRatioBounds,
+	checkRatioEffects,
+	checkRobustScores,
+	checkUnitSlips,
+} from "#tests/reference/estimation/review.ts";
 import { checkSeasons } from "#tests/reference/estimation/seasons.ts";
 import {
 	checkSyntheticDomains,
@@ -12,7 +19,7 @@ import {
 	checkSyntheticStrata,
 } from "#tests/reference/estimation/synthetic.ts";
 
-/** Design-based estimation: totals, means, ratios, proportions, quantiles and their standard errors. */
+/** Design-based estimation, change between seasons, the arithmetic of review, and where to ask on. */
 export const checkers: Checker[] = [
 	comparing(/^api_lonely_expected\.json$/, checkLoneRespondents),
 	comparing(/^api_(?!lonely).*_expected\.json$/, checkNamedFigures),
@@ -22,5 +29,10 @@ export const checkers: Checker[] = [
 	comparing(/^synthetic_expected\.json$/, checkSyntheticFigures),
 	comparing(/^change_expected\.csv$/, checkChange),
 	comparing(/^change_mean5_expected\.json$/, checkSeasons),
+	comparing(/^allocation_expected\.csv$/, checkAllocation),
+	comparing(/^review_hb_effects\.csv$/, checkRatioEffects),
+	comparing(/^review_hb_expected\.csv$/, checkRatioBounds),
+	comparing(/^review_z_expected\.csv$/, checkRobustScores),
+	comparing(/^review_unit_slip\.csv$/, checkUnitSlips),
 	comparing(/^days_expected\.csv$/, checkDays),
 ];
