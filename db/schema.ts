@@ -310,6 +310,7 @@ export interface DirectoryPlanting {
   planted_year: number | null;
   planting_id: Generated<string>;
   removed_on: string | null;
+  trees_told_at: Generated<Timestamp>;
   young_trees: Generated<number>;
 }
 

@@ -1,6 +1,7 @@
 import { isDeepStrictEqual } from "node:util";
-import { sql } from "kysely";
+import { type Selectable, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
+import type { DB } from "#db/schema.ts";
 import type { Answer, Confirmation } from "./form.ts";
 import { answersByPlace, placeOf, type PlantingAsked } from "./steps.ts";
 
@@ -11,20 +12,38 @@ export type Submission = { plantings: PlantingSent[]; answers: Answer[] };
 
 export async function listAnswers(trx: Trx, responseId: string): Promise<Answer[]> {
 	const rows = await trx
-		.selectFrom("collect.answer")
-		.select(["question_key", "planting_id", "kind", "value", "given", "confirmed"])
-		.where("response_id", "=", responseId)
-		.orderBy("question_key")
-		.orderBy("planting_id")
+		.selectFrom("collect.answer as a")
+		.select(answerColumns)
+		.where("a.response_id", "=", responseId)
+		.orderBy("a.question_key")
+		.orderBy("a.planting_id")
 		.execute();
-	return rows.map((row) => ({
+	return rows.map(answerOf);
+}
+
+/** Of `collect.answer as a`, what `answerOf` reads. */
+export const answerColumns = [
+	"a.question_key",
+	"a.planting_id",
+	"a.kind",
+	"a.value",
+	"a.given",
+	"a.confirmed",
+] as const;
+type AnswerRow = Pick<
+	Selectable<DB["collect.answer"]>,
+	"question_key" | "planting_id" | "kind" | "value" | "given" | "confirmed"
+>;
+
+export function answerOf(row: AnswerRow): Answer {
+	return {
 		questionKey: row.question_key,
 		plantingId: row.planting_id,
 		kind: row.kind as Answer["kind"],
 		value: row.value as Answer["value"],
 		given: row.given as Answer["given"],
 		...(hasAny(row.confirmed) && { confirmed: row.confirmed }),
-	}));
+	};
 }
 
 function hasAny(confirmed: unknown): confirmed is Confirmation[] {

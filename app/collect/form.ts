@@ -52,8 +52,11 @@ export const Question = z.discriminatedUnion("type", [
 		type: z.literal("number"),
 		unitFamily: z.enum(["mass", "area", "temperature", "length", "trees", "count"]),
 		limits,
-		/** Filled in from the directory, so that what is known is confirmed and not asked again. */
-		prefill: z.enum(["bearing_trees"]).optional(),
+		/**
+		 * What is known of a planting is filled in, to be confirmed and not asked again: what was told in the newest earlier
+		 * season, of bearing trees also what the list of plantings says, where it was changed since.
+		 */
+		prefill: z.enum(["bearing_trees", "last_season"]).optional(),
 	}),
 	z.object({ ...questionBase, type: z.literal("percent"), limits }),
 	z.object({

@@ -12,6 +12,8 @@ import {
 	sameAnswers,
 } from "./answer-rows.server.ts";
 import { type Answer, FormDefinition } from "./form.ts";
+import { listEarlierAnswers } from "./earlier-answers.server.ts";
+import type { EarlierAnswer } from "./step-values.ts";
 import type { StepChanges } from "./step-change.ts";
 import { keptAnswers, type PlantingAsked } from "./steps.ts";
 import type { MassUnit } from "./units.ts";
@@ -39,6 +41,8 @@ export type Answering = {
 	plantings: PlantingAsked[];
 	response: ResponseSoFar | null;
 	answers: Answer[];
+	/** What earlier seasons' answers fill in. */
+	earlier: EarlierAnswer[];
 };
 export type ResponseSoFar = {
 	responseId: string;
@@ -74,6 +78,7 @@ export async function findAnswering(trx: Trx, viewer: Grower, place: AnswerPlace
 		crates: await listCrates(trx, place.operationId),
 		response: row.response && { ...row.response, changedSinceSubmission: changed },
 		answers,
+		earlier: await listEarlierAnswers(trx, place, { season: row.season, definition, plantings }),
 	};
 }
 

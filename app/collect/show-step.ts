@@ -4,7 +4,7 @@ import { listOpenChecks } from "./checks.ts";
 import type { Question } from "./form.ts";
 import { problemOf } from "./posted-step.ts";
 import type { StepValues } from "./posted.ts";
-import { type ShowSettings, valuesOf } from "./step-values.ts";
+import { type FilledFrom, listFilledIn, type ShowSettings, valuesOf } from "./step-values.ts";
 import { type StepChanges, versionOf } from "./step-change.ts";
 import { type Asking, listAsked, type Step } from "./steps.ts";
 
@@ -12,6 +12,8 @@ export type ShownStep = {
 	step: Step;
 	questions: Question[];
 	values: StepValues;
+	/** From where boxes are filled in that nobody has answered yet, by question. */
+	filledIn: Record<string, FilledFrom>;
 	/** The version of the step that is shown. */
 	version: number;
 	/** Its place among the steps that are asked, counted from 1. */
@@ -38,6 +40,7 @@ export function showStep(
 	return {
 		...asked,
 		values: valuesOf(asked.step, asked.questions, asking.answers, settings),
+		filledIn: listFilledIn(asked.step, asked.questions, asking.answers, settings),
 		version: versionOf(changes, stepKey),
 		number: at + 1,
 		of: steps.length,

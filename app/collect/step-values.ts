@@ -20,7 +20,12 @@ export type ShowSettings = {
 	language: "en" | "es";
 	/** Pounds that the operation's crate holds, by crop, as last told. */
 	crates?: Readonly<Record<string, number>>;
+	/** What was told in earlier seasons of questions that are filled in from there. */
+	earlier?: readonly EarlierAnswer[];
 };
+export type EarlierAnswer = { season: number; answer: Answer };
+/** From where a box is filled in that nobody has answered yet: a season's answer, or the list of plantings. */
+export type FilledFrom = { season: number } | "plantings";
 
 /** What the boxes hold when a step is shown: answers as they were typed, else what is already known. */
 export function valuesOf(step: Step, questions: Question[], answers: Answer[], settings: ShowSettings): StepValues {
@@ -29,7 +34,8 @@ export function valuesOf(step: Step, questions: Question[], answers: Answer[], s
 	const values: StepValues = {};
 	for (const question of questions) {
 		const { key } = question;
-		const answer = byPlace.get(placeOf(key, step.planting?.plantingId ?? null));
+		const held = byPlace.get(placeOf(key, step.planting?.plantingId ?? null));
+		const answer = held ?? earlierOf(key, step, settings)?.answer;
 		const family = unitFamilyOf(question);
 		if (family !== undefined) Object.assign(values, unitValues(key, family, step, answer, answers, settings));
 		if (answer === undefined || answer.kind === "given") values[key] = shown(question, answer, step, settings);
@@ -37,6 +43,34 @@ export function valuesOf(step: Step, questions: Question[], answers: Answer[], s
 		else values[shares.includes(question) ? screenKind : `${key}_kind`] = answer.kind;
 	}
 	return values;
+}
+
+/** Of a step's questions that nobody has answered yet, from where their boxes are filled in. */
+export function listFilledIn(
+	step: Step,
+	questions: Question[],
+	answers: Answer[],
+	settings: ShowSettings,
+): Record<string, FilledFrom> {
+	const byPlace = answersByPlace(answers);
+	const filled: Record<string, FilledFrom> = {};
+	for (const question of questions) {
+		const { key } = question;
+		if (byPlace.has(placeOf(key, step.planting?.plantingId ?? null))) continue;
+		const earlier = earlierOf(key, step, settings);
+		if (earlier) filled[key] = { season: earlier.season };
+		else if (isFromPlantings(question) && step.planting) filled[key] = "plantings";
+	}
+	return filled;
+}
+
+function earlierOf(key: string, { planting }: Step, { earlier = [] }: ShowSettings): EarlierAnswer | undefined {
+	const plantingId = planting?.plantingId ?? null;
+	return earlier.find(({ answer }) => answer.questionKey === key && answer.plantingId === plantingId);
+}
+
+function isFromPlantings(question: Question): boolean {
+	return question.type === "number" && question.prefill === "bearing_trees";
 }
 
 function shown(question: Question, answer: Answer | undefined, step: Step, { language }: ShowSettings) {
@@ -48,8 +82,7 @@ function shown(question: Question, answer: Answer | undefined, step: Step, { lan
 		return Array.isArray(answer.value) ? answer.value : String(answer.value ?? "");
 	}
 	if (question.type === "several") return [];
-	const prefilled = question.type === "number" && question.prefill === "bearing_trees" && step.planting;
-	return prefilled ? String(prefilled.bearingTrees) : "";
+	return isFromPlantings(question) && step.planting ? String(step.planting.bearingTrees) : "";
 }
 
 /** A number as it was typed, unless the page's language reads that otherwise: "12,5" is asked back in English. */

@@ -31,8 +31,8 @@ async function insertOperations(trx: Trx, operations: SeedOperation[]): Promise<
 		from jsonb_to_recordset(${all}::jsonb) as o(operation_id uuid, owner_id uuid, name text, county_fips text,
 			contact_name text, email text, language text, mass_unit text)`.execute(trx);
 	await sql`insert into directory.planting (planting_id, operation_id, crop_key, cultivar, bearing_trees, young_trees,
-			planted_year, created_at)
-		select p.planting_id, o.operation_id, p.crop_key, p.cultivar, p.bearing_trees, p.young_trees, p.planted_year, ${listedAt}
+			planted_year, created_at, trees_told_at)
+		select p.planting_id, o.operation_id, p.crop_key, p.cultivar, p.bearing_trees, p.young_trees, p.planted_year, ${listedAt}, ${listedAt}
 		from jsonb_to_recordset(${all}::jsonb) as o(operation_id uuid, plantings jsonb),
 			jsonb_to_recordset(o.plantings) as p(planting_id uuid, crop_key text, cultivar text, bearing_trees int,
 				young_trees int, planted_year int)`.execute(trx);

@@ -44,8 +44,8 @@ export function asGrower<T>(viewer: Grower, work: (trx: Trx) => Promise<T>): Pro
 	return scopedTransaction({ kind: "grower", operationIds: viewer.operationIds }, work);
 }
 
-export async function addSurvey(associate: Associate, open = true): Promise<string> {
-	const draft = draftOf(["19"], { crops: ["apple", "plum", "hazelnut"] });
+export async function addSurvey(associate: Associate, open = true, season = 2031): Promise<string> {
+	const draft = draftOf(["19"], { crops: ["apple", "plum", "hazelnut"], season });
 	return asDesk(associate, async (trx) => {
 		const { surveyId } = (await createSurvey(trx, associate, draft)) as { surveyId: string };
 		if (open && (await openSurvey(trx, associate, surveyId)) !== "opened") throw new Error("the survey did not open");

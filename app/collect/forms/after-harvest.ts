@@ -100,6 +100,7 @@ export const afterHarvest: FormDefinition = {
 					key: "normal_crop",
 					type: "number",
 					unitFamily: "mass",
+					prefill: "last_season",
 					text: {
 						en: "In a normal year, how much would you pick from this planting?",
 						es: "En un año normal, ¿cuánto cosecharía de esta plantación?",

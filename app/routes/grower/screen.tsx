@@ -22,9 +22,9 @@ export const handle = { bare: true };
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const answering = await getAnswering(context, params);
-	const { response, massUnit, crates } = answering;
+	const { response, massUnit, crates, earlier } = answering;
 	if (!response) throw redirect(href("/answer/:surveyId/:operationId", params), 303);
-	const settings = { massUnit, crates, language: getLanguage(context) };
+	const settings = { massUnit, crates, earlier, language: getLanguage(context) };
 	const shown = showStep(answering, response.stepChanges, params.screen, settings);
 	if (!shown) throw refusal("page_not_found");
 	return { ...shown, phone: phonePart(answering, settings.language) };

@@ -41,12 +41,14 @@ export function packOf(answering: OpenAnswering, language: Language): Pack | und
 }
 
 /** What seldom changes while a survey is open. Measures are for the network's figures, and of no use to a phone. */
-function unchanging({ definition, plantings, massUnit, crates, season, timeZone, closesAt }: OpenAnswering) {
+function unchanging(answering: OpenAnswering) {
+	const { definition, plantings, massUnit, crates, earlier, season, timeZone, closesAt } = answering;
 	return {
 		definition: { ...definition, measures: [] },
 		plantings,
 		massUnit,
 		crates,
+		earlier,
 		season,
 		timeZone,
 		closesAt: closesAt.toISOString(),

@@ -1,6 +1,8 @@
+import type { TFunction } from "i18next";
 import { useTranslation } from "react-i18next";
 import type { Question } from "#app/collect/form.ts";
 import type { StepValues } from "#app/collect/step-fields.ts";
+import type { FilledFrom } from "#app/collect/step-values.ts";
 import type { PlantingAsked } from "#app/collect/steps.ts";
 import { canonicalUnit, unitFamilyOf, unitsFor } from "#app/collect/units.ts";
 import { ChoiceField } from "#app/components/choice-field.tsx";
@@ -17,6 +19,8 @@ type QuestionFieldProps = {
 	problems: Problem[];
 	/** false where the screen asks once whether the grower knows, for all its questions. */
 	mayNotKnow: boolean;
+	/** From where the box is filled in, as long as nobody has answered. */
+	filledFrom?: FilledFrom;
 };
 
 /** What a question is called in a sentence about it. */
@@ -64,7 +68,8 @@ function OptionsField({ question, values, problems }: QuestionFieldProps & { que
 
 type Box = Exclude<Question, Options | { type: "photo" }>;
 
-function BoxField({ question, planting, values, problems, mayNotKnow }: QuestionFieldProps & { question: Box }) {
+function BoxField(props: QuestionFieldProps & { question: Box }) {
+	const { question, planting, values, problems, mayNotKnow, filledFrom } = props;
 	const { t, i18n } = useTranslation("grower");
 	const label = wordsIn(question.text, i18n.language);
 	const typed = values[question.key];
@@ -74,7 +79,7 @@ function BoxField({ question, planting, values, problems, mayNotKnow }: Question
 		<TextField
 			name={question.key}
 			label={label}
-			help={question.help && wordsIn(question.help, i18n.language)}
+			help={helpOf(question, i18n.language, filledFrom, t)}
 			noun={labelOf(question, i18n.language)}
 			optional={!question.required}
 			defaultValue={typeof typed === "string" ? typed : ""}
@@ -107,6 +112,17 @@ function BoxField({ question, planting, values, problems, mayNotKnow }: Question
 			}
 		/>
 	);
+}
+
+/** What helps with the answer; what is filled in says whence, so that it is confirmed and not overlooked. */
+function helpOf(question: Question, language: string, filledFrom: FilledFrom | undefined, t: TFunction<"grower">) {
+	const help = question.help && wordsIn(question.help, language);
+	if (!filledFrom) return help;
+	const whence =
+		filledFrom === "plantings"
+			? t("screen.fromPlantings")
+			: t("screen.fromSeason", { season: String(filledFrom.season) });
+	return help ? `${whence} ${help}` : whence;
 }
 
 const inputModes = {

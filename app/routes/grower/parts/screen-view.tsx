@@ -80,6 +80,7 @@ export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
 						values={values}
 						mayNotKnow={!shared.has(question.key)}
 						problems={problems}
+						filledFrom={posted ? undefined : shown.filledIn[question.key]}
 					/>
 				))}
 				{shared.size > 0 && <ScreenUnknown values={values} />}

@@ -1,6 +1,7 @@
 import type { Answer, FormDefinition } from "#app/collect/form.ts";
 import type { StepChanges } from "#app/collect/step-change.ts";
 import type { PlantingAsked } from "#app/collect/steps.ts";
+import type { EarlierAnswer } from "#app/collect/step-values.ts";
 import type { MassUnit } from "#app/collect/units.ts";
 import type { PageData } from "./page-data.ts";
 import type { PhoneStore } from "./store.ts";
@@ -20,6 +21,7 @@ export type Pack = {
 	plantings: PlantingAsked[];
 	massUnit: MassUnit;
 	crates: Record<string, number>;
+	earlier: EarlierAnswer[];
 	season: number;
 	timeZone: string;
 	/** The day at the operation when the server last said; a phone's clock may be behind. */
@@ -38,6 +40,7 @@ export function isPack(found: unknown): found is Pack {
 		typeof pack.definition === "object" &&
 		Array.isArray(pack.plantings) &&
 		Array.isArray(pack.answers) &&
+		Array.isArray(pack.earlier) &&
 		typeof pack.words === "object"
 	);
 }

@@ -46,8 +46,8 @@ export async function loadStart(args: LoaderFunctionArgs) {
 export async function loadScreen(args: LoaderFunctionArgs) {
 	const { pack, held, asking } = await surveyAt(args);
 	const stepKey = args.params.screen ?? "";
-	const { massUnit, crates, language, changes } = pack;
-	const shown = showStep(asking, changes, stepKey, { massUnit, crates, language });
+	const { massUnit, crates, earlier, language, changes } = pack;
+	const shown = showStep(asking, changes, stepKey, { massUnit, crates, earlier, language });
 	if (!shown) throw redirect(href("/answer/:surveyId/:operationId", placeOf(pack)));
 	const version = typedStep(held.outbox, stepKey)?.seen ?? shown.version;
 	return { shown: { ...shown, version }, place: placeOf(pack), phone: phoneOf(pack) };
