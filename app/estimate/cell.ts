@@ -88,7 +88,7 @@ function figureOf(kind: EstimateKind, strata: readonly DomainStratum[]): Figure 
 function intervalOf(kind: EstimateKind, figure: Figure, strata: readonly DomainStratum[]): Interval | null {
 	if (kind !== "proportion") return normalInterval(figure);
 	const df = domainDegreesOfFreedom(strata);
-	return logitInterval(figure, df) ?? exactInterval(figure, domainTotals(strata).respondents, df);
+	return logitInterval(figure, df) ?? exactInterval(figure, df, domainTotals(strata).respondents);
 }
 
 function clip(

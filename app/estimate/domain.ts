@@ -16,6 +16,9 @@ export type DomainStratum = {
 	domain: Moments;
 };
 
+/** Sums over operations of the domain that share one weight. */
+export type WeightedMoments = Pick<DomainStratum, "weight" | "domain">;
+
 /** Weighted count and totals of a domain, with its plain count of respondents. */
 export type DomainTotals = { respondents: number; count: number; totalY: number; totalX: number };
 
@@ -51,7 +54,7 @@ export function domainStrata(
 }
 
 /** Weighted totals of a domain. `count` estimates its operations on the frame; all are 0 where nobody answered. */
-export function domainTotals(strata: readonly DomainStratum[]): DomainTotals {
+export function domainTotals(strata: readonly WeightedMoments[]): DomainTotals {
 	const totals = { respondents: 0, count: 0, totalY: 0, totalX: 0 };
 	for (const { weight, domain } of strata) {
 		totals.respondents += domain.n;

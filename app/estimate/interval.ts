@@ -34,12 +34,12 @@ export function logitInterval({ value, standardError }: Figure, df: number): Int
 /**
  * Exact binomial interval of a proportion with the sample size that the design is worth (Korn and Graubard). It also
  * stands at 0 and 1, where the effective size cannot be had from the variance and the count of respondents is used.
- * @param respondents of the domain. @param df respondents less the strata that hold them.
+ * @param df respondents of the domain less the strata that hold them. @param respondents of the domain.
  * @returns null with no degree of freedom.
  * @throws {RangeError} when the value is not a proportion.
  * Source: Korn and Graubard (1998), from memory; formula 6 of the reference set; R survey 4.1-1 `svyciprop(method="beta")`.
  */
-export function exactInterval({ value, standardError }: Figure, respondents: number, df: number): Interval | null {
+export function exactInterval({ value, standardError }: Figure, df: number, respondents: number): Interval | null {
 	requireProportion(value);
 	if (df < 1 || respondents < 2) return null;
 	const spread = value * (1 - value);

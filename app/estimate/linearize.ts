@@ -1,5 +1,5 @@
 import { preciseQuotient, preciseZero, sumOfProducts, type Precise } from "#app/lib/precise.ts";
-import type { DomainStratum } from "#app/estimate/domain.ts";
+import type { WeightedMoments } from "#app/estimate/domain.ts";
 
 /**
  * What is estimated from a measure's y and x: the total of y; the mean of y an operation; the ratio of the totals of y
@@ -18,7 +18,7 @@ export type Linearized = { value: number; slope: Precise; intercept: Precise; sc
  * @returns null where there is nothing to divide by: nobody for a mean, no x for a ratio.
  * Source: Särndal, Swensson and Wretman, Model Assisted Survey Sampling (1992), chapter 5, from memory.
  */
-export function linearize(kind: EstimateKind, strata: readonly DomainStratum[]): Linearized | null {
+export function linearize(kind: EstimateKind, strata: readonly WeightedMoments[]): Linearized | null {
 	const y = sumOfProducts(strata.map(({ weight, domain }) => [weight, domain.sumY]));
 	if (kind === "total") return { value: y.high, slope: preciseZero, intercept: preciseZero, scale: 1 };
 	const base = sumOfProducts(strata.map(({ weight, domain }) => [weight, kind === "mean" ? domain.n : domain.sumX]));

@@ -1,6 +1,7 @@
 import { domainDegreesOfFreedom, type DomainStratum } from "#app/estimate/domain.ts";
-import { ratioEstimate } from "#app/estimate/estimators.ts";
+import { ratioEstimate, type Figure } from "#app/estimate/estimators.ts";
 import { tQuantile } from "#app/estimate/distributions.ts";
+import { tInterval, type Interval } from "#app/estimate/interval.ts";
 
 /** One stratum's answers in the domain as counts by value: a day measure's histogram by day of year. */
 export type HistogramStratum = Pick<DomainStratum, "weight" | "samplingFraction" | "respondents"> & {
@@ -13,6 +14,9 @@ export type HistogramStratum = Pick<DomainStratum, "weight" | "samplingFraction"
  */
 export type QuantileRule = "lower" | "midpoint";
 
+/** An interval of the share at or below the quantile, to be read back as values. */
+export type ShareInterval = (share: Figure, df: number, respondents: number) => Interval | null;
+
 export type QuantileFigure = {
 	value: number;
 	/** Ends of the 95 percent interval; null where the interval of the share leaves 0 to 1, or has no degree of freedom. */
@@ -21,7 +25,7 @@ export type QuantileFigure = {
 	/** Half the interval's width over its t quantile; null where an end is missing. */
 	standardError: number | null;
 	/** Weighted share at or below the value, and its standard error. */
-	share: { value: number; standardError: number };
+	share: Figure;
 	respondents: number;
 };
 
@@ -32,8 +36,9 @@ type Step = { value: number; cumulative: number };
  * (Woodruff): the share at or below the quantile, give or take t standard errors, is read back as values.
  * @param strata every stratum of the design that has respondents, also those with nobody in the domain (no counts).
  * @param p share below the quantile, above 0 and below 1: 0.5 is the median.
- * @param df degrees of freedom of t; those of the domain unless given.
- * @returns in units of the values; null where nobody of the domain answered. Never NaN.
+ * @param rule what to do where a share ends between two values. @param df degrees of freedom of t; those of the domain
+ *   unless given. @param interval of the share; by t unless given. A logit interval never leaves 0 to 1.
+ * @returns in units of the values; null where nobody of the domain answered. One respondent has no interval. Never NaN.
  * @throws {RangeError} for another p, or as `linearizedVariance` does.
  * Source: Woodruff (1952), from memory; formulas 7 and 17 of the reference set. Checked: R survey 4.1-1 `svyquantile`,
  * `qrule` "math" and "school".
@@ -41,7 +46,7 @@ type Step = { value: number; cumulative: number };
 export function quantileEstimate(
 	strata: readonly HistogramStratum[],
 	p: number,
-	{ rule = "lower", df }: { rule?: QuantileRule; df?: number } = {},
+	{ rule = "lower", df, interval = tInterval }: { rule?: QuantileRule; df?: number; interval?: ShareInterval } = {},
 ): QuantileFigure | null {
 	if (!(p > 0 && p < 1)) throw new RangeError(`no quantile at ${p}`);
 	const steps = distribution(strata);
@@ -53,11 +58,12 @@ export function quantileEstimate(
 	const respondents = below.reduce((sum, stratum) => sum + stratum.domain.n, 0);
 	const figure = { value, share, respondents };
 	const freedom = df ?? domainDegreesOfFreedom(below);
-	if (freedom < 1) return { ...figure, lower: null, upper: null, standardError: null };
+	const ends = respondents < 2 ? null : interval(share, freedom, respondents);
+	if (!ends || freedom < 1) return { ...figure, lower: null, upper: null, standardError: null };
 
 	const t = tQuantile(0.975, freedom);
-	const lower = endAt(steps, share.value - t * share.standardError, rule);
-	const upper = endAt(steps, share.value + t * share.standardError, rule);
+	const lower = endAt(steps, ends.lower, rule);
+	const upper = endAt(steps, ends.upper, rule);
 	const standardError = lower === null || upper === null ? null : (upper - lower) / (2 * t);
 	return { ...figure, lower, upper, standardError };
 }
