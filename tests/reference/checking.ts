@@ -82,10 +82,11 @@ export function requiredNumber(row: Row, column: string): number {
 	return value;
 }
 
-/** Counts numbers in JSON, to say how many are left uncovered. */
-export function countNumbers(json: Json | undefined): number {
+/** Counts the numbers of a JSON file that are to be met: all but those under the keys given, which are told beforehand. */
+export function countNumbers(json: Json | undefined, inputs: ReadonlySet<string> = new Set()): number {
 	if (typeof json === "number") return 1;
-	if (Array.isArray(json)) return json.reduce<number>((sum, part) => sum + countNumbers(part), 0);
-	if (isObject(json)) return Object.values(json).reduce<number>((sum, part) => sum + countNumbers(part), 0);
-	return 0;
+	if (Array.isArray(json)) return json.reduce<number>((sum, part) => sum + countNumbers(part, inputs), 0);
+	if (!isObject(json)) return 0;
+	const parts = Object.entries(json).filter(([key]) => !inputs.has(key));
+	return parts.reduce((sum, [, part]) => sum + countNumbers(part, inputs), 0);
 }

@@ -1,18 +1,25 @@
-import { domainTotals, type DomainStratum } from "#app/estimate/domain.ts";
-import { meanEstimate, ratioEstimate, totalEstimate, type Figure } from "#app/estimate/estimators.ts";
+import { tQuantile } from "#app/estimate/distributions.ts";
+import type { Figure } from "#app/estimate/estimators.ts";
 import { exactInterval, logitInterval, normalInterval, tInterval, type Interval } from "#app/estimate/interval.ts";
-import { quantileEstimate, type QuantileRule } from "#app/estimate/quantile.ts";
+import { quantileEstimate, type QuantileRule, type ShareInterval } from "#app/estimate/quantile.ts";
 import { isObject, type Comparison, type Json } from "#tests/reference/checking.ts";
 import {
 	column,
 	histogramOf,
-	seenFrom,
+	one,
 	type Design,
 	type Domain,
 	type Quantity,
 } from "#tests/reference/estimation/design.ts";
+import type { Estimating } from "#tests/reference/estimation/estimating.ts";
+import {
+	arcsineInterval,
+	likelihoodInterval,
+	likelihoodTolerance,
+	scoreEnds,
+} from "#tests/reference/estimation/other-methods.ts";
 
-type Node = { [key: string]: Json };
+export type Node = { [key: string]: Json };
 
 /** Splits "numerator_denominator" where both halves are columns, since names can hold the joining sign too. */
 export function splitPair(pair: string, columns: Set<string>): [string, string] | undefined {
@@ -24,15 +31,15 @@ export function splitPair(pair: string, columns: Set<string>): [string, string] 
 }
 
 /** The figure that a key such as `mean_a`, `total_a` or `ratio_a_b` names; undefined for any other key. */
-export function namedFigure(design: Design, domain: Domain, key: string): Figure | null | undefined {
+export function namedFigure(estimating: Estimating, domain: Domain, key: string): Figure | null | undefined {
 	const [, kind, rest = ""] = /^(mean|total|ratio)_(.+)$/.exec(key) ?? [];
+	const { columns } = estimating.design;
 	if (kind === "ratio") {
-		const pair = splitPair(rest, design.columns);
-		return pair && ratioEstimate(seenFrom(design, domain, column(pair[0]), column(pair[1])));
+		const pair = splitPair(rest, columns);
+		return pair && estimating.figure("ratio", domain, column(pair[0]), column(pair[1]));
 	}
-	if (!kind || !design.columns.has(rest)) return undefined;
-	const strata = seenFrom(design, domain, column(rest));
-	return kind === "mean" ? meanEstimate(strata) : totalEstimate(strata);
+	if (!kind || !columns.has(rest)) return undefined;
+	return estimating.figure(kind === "mean" ? "mean" : "total", domain, column(rest));
 }
 
 /** Estimate, standard error, CV and intervals of one block, as far as the block holds them. */
@@ -73,25 +80,33 @@ function compareInterval(
 	}));
 }
 
+/** The package fits `logit` by iteration, which stops early; `likelihood` has its ends read off a curve. */
+const tolerances: Record<string, number> = { logit: 1e-7, likelihood: likelihoodTolerance };
+
 /**
- * Intervals of a proportion: `xlogit` is the logit interval by formula, `logit` the same from a fitted model, which
- * stops early (1e-7); `beta` is the exact one with effective size, `mean` the plain t interval.
+ * Intervals of a proportion: `xlogit` is the logit interval by formula, `logit` the same from a fitted model; `beta` is
+ * the exact one with effective size, `mean` the plain t interval. The others are not ours.
  */
-export function compareProportion(at: string, node: Node, strata: DomainStratum[], df: number): Comparison[] {
-	const figure = ratioEstimate(strata);
+export function compareProportion(
+	at: string,
+	node: Node,
+	figure: Figure | null,
+	{ df, respondents }: { df: number; respondents: number },
+): Comparison[] {
 	if (!figure) return [{ at, expected: "a proportion", actual: null }];
-	const { respondents } = domainTotals(strata);
 	const intervals: Record<string, Interval | null> = {
 		logit: logitInterval(figure, df),
 		xlogit: logitInterval(figure, df),
-		beta: exactInterval(figure, respondents, df),
+		beta: exactInterval(figure, df, respondents),
 		mean: tInterval(figure, df),
+		asin: arcsineInterval(figure, df),
+		likelihood: likelihoodInterval(figure, df, respondents),
 	};
 	return Object.entries(intervals).flatMap(([method, interval]) => {
 		const expected = node[method];
 		if (!isObject(expected)) return [];
 		const path = `${at}.${method}`;
-		const ends = compareInterval(path, expected, interval, method === "logit" ? 1e-7 : undefined);
+		const ends = compareInterval(path, expected, interval, tolerances[method]);
 		const comparisons = ends.concat({ at: `${path}.estimate`, expected: expected.estimate, actual: figure.value });
 		if ("se" in expected) comparisons.push({ at: `${path}.se`, expected: expected.se, actual: figure.standardError });
 		if ("df" in expected) comparisons.push({ at: `${path}.df`, expected: expected.df, actual: df });
@@ -100,17 +115,21 @@ export function compareProportion(at: string, node: Node, strata: DomainStratum[
 	});
 }
 
+type QuantileQuestion = {
+	domain: Domain;
+	y: Quantity;
+	rule: QuantileRule;
+	df?: number;
+	interval?: ShareInterval;
+};
+
 /** A block of parallel lists: p, quantile, lower, upper, se. */
-export function compareQuantiles(
-	at: string,
-	node: Node,
-	design: Design,
-	{ domain, y, rule, df }: { domain: Domain; y: Quantity; rule: QuantileRule; df?: number },
-): Comparison[] {
+export function compareQuantiles(at: string, node: Node, design: Design, question: QuantileQuestion): Comparison[] {
+	const { domain, y, ...options } = question;
 	const strata = histogramOf(design, domain, y);
 	const list = (name: string) => (Array.isArray(node[name]) ? (node[name] as Json[]) : []);
 	return list("p").flatMap((p, i) => {
-		const figure = quantileEstimate(strata, Number(p), { rule, df });
+		const figure = quantileEstimate(strata, Number(p), options);
 		return [
 			{ at: `${at}.quantile[${i}]`, expected: list("quantile")[i], actual: figure?.value ?? null },
 			{ at: `${at}.lower[${i}]`, expected: list("lower")[i], actual: figure?.lower ?? null },
@@ -118,4 +137,33 @@ export function compareQuantiles(
 			{ at: `${at}.se[${i}]`, expected: list("se")[i], actual: figure?.standardError ?? null },
 		];
 	});
+}
+
+/** As `compareQuantiles`, for ends by the score, each of which may be one of two. */
+export function compareScoreQuantiles(
+	at: string,
+	node: Node,
+	design: Design,
+	{ domain, y, df }: { domain: Domain; y: Quantity; df: number },
+): Comparison[] {
+	const list = (name: string) => (Array.isArray(node[name]) ? node[name].map(Number) : []);
+	const t = tQuantile(0.975, df);
+	return list("p").flatMap((p, i) => {
+		const ends = scoreEnds(design, { domain, y, p, df });
+		const [lower, upper] = (["lower", "upper"] as const).map(
+			(end) => ends[end].find((value) => value === list(end)[i]) ?? ends[end][0]!,
+		);
+		const value = quantileEstimate(histogramOf(design, domain, y), p)?.value ?? null;
+		return [
+			{ at: `${at}.quantile[${i}]`, expected: list("quantile")[i], actual: value },
+			{ at: `${at}.lower[${i}]`, expected: list("lower")[i], actual: lower },
+			{ at: `${at}.upper[${i}]`, expected: list("upper")[i], actual: upper },
+			{ at: `${at}.se[${i}]`, expected: list("se")[i], actual: (upper! - lower!) / (2 * t) },
+		];
+	});
+}
+
+/** How many answered, in the whole design or in a domain. */
+export function respondentsIn({ parts }: Estimating, domain: Domain): number {
+	return parts(domain, one).reduce((sum, part) => sum + part.domain.n, 0);
 }

@@ -31,8 +31,8 @@ export async function checkLoneRespondents(folder: string, file: string): Promis
 			else if ("error" in expected) {
 				checked.comparisons.push({
 					at: `${key}.${rule}`,
-					expected: "refused",
-					actual: refused(() => meanEstimate(strata, lone)),
+					expected: true,
+					actual: isRefused(() => meanEstimate(strata, lone)),
 				});
 			} else {
 				const figure = meanEstimate(strata, lone);
@@ -46,12 +46,13 @@ export async function checkLoneRespondents(folder: string, file: string): Promis
 	return checked;
 }
 
-function refused(estimate: () => unknown): string {
+/** Whether an estimate is refused for its design. */
+export function isRefused(estimate: () => unknown): boolean {
 	try {
 		estimate();
-		return "estimated";
+		return false;
 	} catch (error) {
-		if (error instanceof RangeError) return "refused";
+		if (error instanceof RangeError) return true;
 		throw error;
 	}
 }

@@ -7,6 +7,7 @@ import {
 	totalEstimate,
 	type Figure,
 } from "#app/estimate/estimators.ts";
+import { calibrateLinear } from "#app/estimate/calibration/linear.ts";
 import type { LoneRespondent } from "#app/estimate/variance.ts";
 import {
 	countNumbers,
@@ -20,8 +21,9 @@ import {
 	type Row,
 } from "#tests/reference/checking.ts";
 import { column, everyone, groupBy, seenFrom, type Design, type Domain } from "#tests/reference/estimation/design.ts";
-import { compareFigure, compareProportion, compareQuantiles } from "#tests/reference/estimation/figures.ts";
-import { loneRules } from "#tests/reference/estimation/lone.ts";
+import { calibrated, rowsOf, sampleOf } from "#tests/reference/estimation/estimating.ts";
+import { compareFigure, compareProportion, compareQuantiles, type Node } from "#tests/reference/estimation/figures.ts";
+import { isRefused, loneRules } from "#tests/reference/estimation/lone.ts";
 
 const y = column("y");
 const x = column("x");
@@ -140,11 +142,58 @@ export async function checkSyntheticFigures(folder: string, file: string): Promi
 	}
 	for (const [key, node] of blocks("prop_any_loss_ci")) {
 		const strata = seenFrom(design, stateOf(key), anyLoss);
-		if (isObject(node))
-			comparisons.push(...compareProportion(`any loss ${key}`, node, strata, domainDegreesOfFreedom(strata)));
+		const { respondents } = domainTotals(strata);
+		const size = { df: domainDegreesOfFreedom(strata), respondents };
+		if (isObject(node)) comparisons.push(...compareProportion(`any loss ${key}`, node, ratioEstimate(strata), size));
 	}
+	comparisons.push(...compareCalibrated(json, frame, design), ...compareLoneStrata(json, frame));
 	const compared = comparisons.filter(({ expected }) => typeof expected === "number").length;
-	return { comparisons, notCovered: countNumbers(json) - countNumbers(json.seed) - compared };
+	return { comparisons, notCovered: countNumbers(json, new Set(["seed", "p"])) - compared };
+}
+
+/** Weights calibrated to each stratum's count and to the frame's normal pounds; `se` is that of the total. */
+function compareCalibrated(json: Node, frame: Row[], design: Design): Comparison[] {
+	const node = json.greg_strata_plus_x;
+	if (!isObject(node)) return [];
+	const rows = rowsOf(design);
+	const counts = design.strata.map(({ key }) => ({
+		name: key,
+		values: rows.map((row) => (row.strA === key ? 1 : 0)),
+		total: frame.filter((row) => row.strA === key).length,
+	}));
+	const calibration = calibrateLinear(sampleOf(design), [
+		...counts,
+		{ name: "x", values: rows.map(x), total: frameTotal(frame) },
+	]);
+	const { figure } = calibrated(design, calibration);
+	const total = figure("total", everyone, y);
+	const byState = Object.entries(isObject(node.ratio_by_state) ? node.ratio_by_state : {});
+	return [
+		{ at: "greg.total_y", expected: node.total_y, actual: total?.value },
+		{ at: "greg.se", expected: node.se, actual: total?.standardError },
+		...byState.flatMap(([state, expected]) => {
+			const ratio = figure("ratio", stateOf(state), y, x);
+			return isObject(expected) ? compareFigure(`greg.${state}`, expected, ratio, 0) : [];
+		}),
+	];
+}
+
+/** The strata of design B with one respondent, of several or of one, and that those of several are refused. */
+function compareLoneStrata(json: Node, frame: Row[]): Comparison[] {
+	const { design, lone } = syntheticDesign(frame, "B_fail");
+	const strata = design.strata.filter(({ rows }) => rows.length === 1);
+	return [
+		{
+			at: "lonely_strata_in_B",
+			expected: String(json.lonely_strata_in_B),
+			actual: String(strata.map(({ key }) => key).toSorted()),
+		},
+		{
+			at: "lonely_fail",
+			expected: /only one PSU/.test(String(json.lonely_fail)),
+			actual: isRefused(() => totalEstimate(seenFrom(design, everyone, y), lone)),
+		},
+	];
 }
 
 /** Keys are state letters; ALL, with or without a remark, is the whole network. */

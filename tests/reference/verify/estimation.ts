@@ -1,6 +1,7 @@
 import { comparing } from "#tests/reference/checking.ts";
 import type { Checker } from "#tests/reference/verify/checker.ts";
 import { checkAllocation } from "#tests/reference/estimation/allocation.ts";
+import { checkWeights } from "#tests/reference/estimation/calibrations.ts";
 import { checkChange } from "#tests/reference/estimation/change.ts";
 import { checkDays } from "#tests/reference/estimation/days.ts";
 import { checkLoneRespondents } from "#tests/reference/estimation/lone.ts";
@@ -22,6 +23,7 @@ import {
 /** Design-based estimation, change between seasons, the arithmetic of review, and where to ask on. */
 export const checkers: Checker[] = [
 	comparing(/^api_lonely_expected\.json$/, checkLoneRespondents),
+	comparing(/^api_srs_weights\.csv$/, checkWeights),
 	comparing(/^api_(?!lonely).*_expected\.json$/, checkNamedFigures),
 	comparing(/^published_values\.json$/, checkPublished),
 	comparing(/^synthetic_strata\.csv$/, checkSyntheticStrata),
