@@ -76,12 +76,15 @@ export default [
 			...prefix("surveys/:surveyId", [
 				layout("routes/desk/survey-layout.tsx", [
 					index("routes/desk/survey.tsx"),
+					route("mailing", "routes/desk/mailing.tsx"),
+					route("mailing/:kind", "routes/desk/mail-preview.tsx"),
 					route("responses", "routes/desk/responses.tsx"),
 					route("responses/:responseId", "routes/desk/response.tsx"),
 					route("estimates", "routes/desk/estimates.tsx"),
 					route("release", "routes/desk/release.tsx"),
 				]),
 			]),
+			route("surveys/:surveyId/mailing/:kind/html", "routes/desk/mail-html.ts"),
 			route("reports", "routes/desk/reports.tsx"),
 			route("reports/:reportId", "routes/desk/report.tsx"),
 		]),

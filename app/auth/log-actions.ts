@@ -5,7 +5,7 @@ export const logActions = {
 	auth: ["signed_in", "sign_in_failed"],
 	grant: ["first_coordinator", "given", "revoked"],
 	access: ["requested", "approved", "declined"],
-	survey: ["created", "opened", "extended", "closed", "invited", "reminded", "link_replaced"],
+	survey: ["created", "opened", "extended", "closed", "invited", "reminders_set", "reminded", "link_replaced"],
 	operation: ["moved", "left", "mail_stopped", "mail_resumed", "address_mended"],
 	response: ["started", "submitted", "amended", "withdrawn"],
 	release: ["drafted", "rejected", "published"],

@@ -5,14 +5,16 @@ import type { Associate } from "#app/auth/viewer.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import type { LogAction } from "#app/auth/log-actions.ts";
 import { sizeClassOf, stratumKeyOf } from "./frame.ts";
+import { planReminders, type SetAlarm } from "./reminders.server.ts";
 import { findSurvey } from "./surveys.server.ts";
 
 /**
  * Opens a draft once and freezes its frame: every active operation of the survey's states with a standing planting of its
  * crops, with the stratum of that moment. A second opening changes nothing. The opener must hold every state of the
  * survey, since row-level security would otherwise leave the others' growers out of the frame without a word.
+ * @param setAlarm how the reminders' alarms are set; by the queue unless told otherwise.
  */
-export async function openSurvey(trx: Trx, viewer: Associate, surveyId: string) {
+export async function openSurvey(trx: Trx, viewer: Associate, surveyId: string, setAlarm?: SetAlarm) {
 	const survey = await lockSurvey(trx, viewer, surveyId);
 	if (!survey) return "not_found" as const;
 	if (survey.openedAt) return "already_open" as const;
@@ -25,6 +27,7 @@ export async function openSurvey(trx: Trx, viewer: Associate, surveyId: string) 
 		.set({ opened_at: sql`now()` })
 		.where("survey_id", "=", surveyId)
 		.execute();
+	await planReminders(trx, survey, viewer.personId, { setAlarm });
 	await note(trx, viewer, "survey.opened", surveyId, { operations });
 	return "opened" as const;
 }

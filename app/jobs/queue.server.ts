@@ -1,9 +1,14 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
+import type { Language } from "#app/i18n/language.ts";
+import type { LetterKind } from "#app/mail/templates.ts";
 
 /** Every kind of queued work with what it takes. Payloads hold ids only: no token, no address, no answer. */
 export type JobPayloads = {
 	send_mail: { mailingId: string };
+	send_reminders: { surveyId: string; wave: number };
+	send_sample: { surveyId: string; personId: string; kind: LetterKind; language: Language };
+	thank_growers: { releaseDraftId: string };
 	compute_release_draft: { releaseDraftId: string };
 };
 
@@ -17,4 +22,9 @@ export async function queueJob<K extends keyof JobPayloads>(
 	await sql`select graphile_worker.add_job(${task}::text, payload := ${JSON.stringify(payload)}::json,
 		run_at := ${options.runAt ?? null}::timestamptz, max_attempts := ${options.maxAttempts ?? null}::int,
 		job_key := ${options.jobKey ?? null}::text)`.execute(trx);
+}
+
+/** Takes back work that has not begun; work that never was is no fault. */
+export async function dropJob(trx: Trx, jobKey: string): Promise<void> {
+	await sql`select graphile_worker.remove_job(${jobKey}::text)`.execute(trx);
 }

@@ -1,15 +1,29 @@
 import type { Task } from "graphile-worker";
 import { z } from "zod";
+import { languages } from "#app/i18n/language.ts";
+import { letterKinds } from "#app/mail/templates.ts";
 import { computeReleaseDraft } from "./compute-release-draft.server.ts";
 import type { JobPayloads } from "./queue.server.ts";
+import { sendSample } from "./sample-mail.server.ts";
 import { sendMail } from "./send-mail.server.ts";
+import { sendReminders } from "./send-reminders.server.ts";
+import { thankGrowers } from "./thank-growers.server.ts";
 
 /** Reads a payload against its schema: a job queued by an older version fails with a plain message, not half-way. */
 function task<P>(schema: z.ZodType<P>, work: (payload: P, lastTry: boolean) => Promise<void>): Task {
 	return (payload, { job }) => work(schema.parse(payload), job.attempts >= job.max_attempts);
 }
 
+/** What a worker does when it starts. */
+export { setReminderAlarms } from "./send-reminders.server.ts";
+
 export const tasks: Record<keyof JobPayloads, Task> = {
 	send_mail: task(z.object({ mailingId: z.uuid() }), sendMail),
+	send_reminders: task(z.object({ surveyId: z.uuid(), wave: z.int() }), sendReminders),
+	send_sample: task(
+		z.object({ surveyId: z.uuid(), personId: z.uuid(), kind: z.enum(letterKinds), language: z.enum(languages) }),
+		sendSample,
+	),
+	thank_growers: task(z.object({ releaseDraftId: z.uuid() }), thankGrowers),
 	compute_release_draft: task(z.object({ releaseDraftId: z.uuid() }), (payload) => computeReleaseDraft(payload)),
 };

@@ -3,18 +3,33 @@ import { logEvent } from "#app/auth/event-log.server.ts";
 import type { LogAction } from "#app/auth/log-actions.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import type { Season } from "./seasons.ts";
+import { planReminders, type SetAlarm } from "#app/collect/reminders.server.ts";
+import { type Season, zone as timeZone } from "./seasons.ts";
 
 /** The mail of a survey, as if it had been sent: invitations, reminders to those who had not answered by then, receipts. */
 export async function fillMailings(trx: Trx, associate: Associate, season: Season, now: Date): Promise<void> {
 	const { surveyId, openedAt, reminders } = season;
 	await sendWave(trx, associate, surveyId, "invitation", 1, openedAt);
 	const sent = reminders.filter((at) => at < now);
+	await setReminders(trx, associate, season, sent);
 	for (const [i, at] of sent.entries()) await sendWave(trx, associate, surveyId, "reminder", i + 1, at);
 	await sendReceipts(trx, surveyId);
 	await note(trx, associate, surveyId, "survey.invited", openedAt);
 	for (const at of sent) await note(trx, associate, surveyId, "survey.reminded", at);
 	if (!season.closedAt) await linkInvitations(trx, season);
+}
+
+/** The seed has no right to the queue: the worker sets all alarms when it starts. */
+export const noAlarm: SetAlarm = async () => {};
+
+/** Reminders that went keep their times; those of the open survey are set anew, as its opening was moved back in time. */
+async function setReminders(trx: Trx, { personId }: Associate, season: Season, sent: Date[]): Promise<void> {
+	const { surveyId, openedAt, closesAt, closedAt } = season;
+	if (!closedAt) return planReminders(trx, { surveyId, closesAt, timeZone }, personId, { openedAt, setAlarm: noAlarm });
+	for (const [i, at] of sent.entries()) {
+		await sql`update collect.reminder set remind_at = ${at}, sent_at = ${at}, set_at = ${openedAt}
+			where survey_id = ${surveyId} and wave = ${i + 1}`.execute(trx);
+	}
 }
 
 /** One mail every fifth of a second; an address that takes none gives the first one up and gets no other. */

@@ -37,7 +37,8 @@ export type Season = {
 	answering: number;
 };
 
-const zone = "America/Chicago";
+/** The one zone of the demo's four states. */
+export const zone = "America/Chicago";
 const at = (day: string, clock: string) => momentIn(day, clock, zone)!;
 const days = 86_400_000;
 

@@ -9,7 +9,7 @@ import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { cropKeys } from "#app/directory/crops.ts";
 import { states } from "#db/reference/states.ts";
 import { insertFacts, insertResponses } from "./insert-responses.ts";
-import { fillMailings } from "./mailings.ts";
+import { fillMailings, noAlarm } from "./mailings.ts";
 import { moveLog } from "./move-log.ts";
 import type { SeedPlanting } from "./operations.ts";
 import { listPlaces } from "./places.ts";
@@ -61,7 +61,7 @@ async function makeSurvey(trx: Trx, associate: Associate, season: Season, now: D
 		.insertInto("collect.survey_state")
 		.values(stateFips.map((state_fips) => ({ survey_id: surveyId, state_fips })))
 		.execute();
-	const opened = await openSurvey(trx, { ...associate, stateFips }, surveyId);
+	const opened = await openSurvey(trx, { ...associate, stateFips }, surveyId, noAlarm);
 	if (opened !== "opened") throw new Error(`the survey of ${season.season} was not opened: ${opened}`);
 	await trx
 		.updateTable("collect.survey")

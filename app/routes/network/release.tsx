@@ -15,6 +15,7 @@ import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { queueJob } from "#app/jobs/queue.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -74,6 +75,7 @@ function approve(network: Network, draftId: string) {
 			const { releaseId, number } = outcome;
 			const subject = { subjectKind: "release", subjectId: releaseId, detail: { number } };
 			await logEvent(trx, { personId: network.viewer.personId, action: "release.published", ...subject });
+			await queueJob(trx, "thank_growers", { releaseDraftId: draftId }, { jobKey: `thank_growers:${draftId}` });
 		}
 		return outcome;
 	});

@@ -115,6 +115,11 @@ export const exceptions: { from: string; to: string; because: string }[] = [
 		because: "mail is queued in the transaction that decides it",
 	},
 	{
+		from: "app/collect/reminders.server.ts",
+		to: "app/jobs/queue.server.ts",
+		because: "a reminder's alarm is set and moved in the transaction that sets its time",
+	},
+	{
 		from: "app/collect/submission.server.ts",
 		to: "app/tally/facts.server.ts",
 		because: "a submission writes its facts in its own transaction: neither is ever there without the other",
