@@ -6,6 +6,7 @@ import { useFormat } from "#app/i18n/use-format.ts";
 import { decimalsOf, type Unit } from "#app/lib/format.ts";
 import { DescriptionList } from "./description-list.tsx";
 import { Section } from "./section.tsx";
+import { useStepTitle } from "./step-title.ts";
 
 type AnswerListProps = {
 	groups: AnswerGroup[];
@@ -17,8 +18,12 @@ type AnswerListProps = {
 /** What was answered, question by question, in the unit it was told in: for review, receipt and desk alike. */
 export function AnswerList({ groups, editHref, level = 2 }: AnswerListProps) {
 	const { t, i18n } = useTranslation();
+	const titleOf = useStepTitle();
+	// Where a planting is asked about on several screens, its name alone does not tell them apart.
+	const tables = new Set(groups.filter(({ planting }) => planting).map(({ title }) => title.en));
 	return groups.map((group) => {
-		const name = group.planting ? plantingName(group.planting, t) : wordsIn(group.title, i18n.language);
+		const { planting, title } = group;
+		const name = planting && tables.size < 2 ? plantingName(planting, t) : titleOf({ screen: { title }, planting });
 		const edit = editHref && (
 			<Link
 				to={editHref(group.stepKey)}
@@ -84,7 +89,8 @@ export function AnswerText({ shown }: { shown: ShownAnswer }) {
 		case "day":
 			return format.day(shown.day);
 		case "words":
-			return format.list(shown.words.map((words) => wordsIn(words, i18n.language)));
+			// Whole phrases, each with its capital letter, do not read as one sentence.
+			return shown.words.map((words) => wordsIn(words, i18n.language)).join("; ");
 		case "text":
 			return <span className="whitespace-pre-line">{shown.text}</span>;
 		case "dont_know":

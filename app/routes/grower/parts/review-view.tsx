@@ -10,7 +10,7 @@ import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { KeptWord, PhonePart, type PhonePage } from "./phone-part.tsx";
-import { useStepTitle } from "./step-title.ts";
+import { useStepTitle } from "#app/components/step-title.ts";
 
 type Titled = { key: string; screen: { title: Words }; planting: PlantingAsked | null };
 type ReviewViewProps = {

@@ -16,7 +16,7 @@ import { ChangedElsewhere } from "./changed-elsewhere.tsx";
 import { CheckNotice } from "./check-notice.tsx";
 import { KeptWord, PhonePart, type PhonePage } from "./phone-part.tsx";
 import { labelOf, QuestionField } from "./question-field.tsx";
-import { useStepTitle } from "./step-title.ts";
+import { useStepTitle } from "#app/components/step-title.ts";
 import { ScreenUnknown } from "./unknown-boxes.tsx";
 
 type AnswerPlace = { surveyId: string; operationId: string };

@@ -7,12 +7,12 @@ type Titled = { screen: { title: Words }; planting: PlantingAsked | null };
 
 /** A step's heading: the screen's title, with the planting it asks about. */
 export function useStepTitle() {
-	const { t, i18n } = useTranslation("grower");
+	const { t, i18n } = useTranslation();
 	return ({ screen, planting }: Titled): string => {
 		const title = wordsIn(screen.title, i18n.language);
 		if (!planting) return title;
-		const crop = t(`common:crop.${planting.cropKey}`);
+		const crop = t(`crop.${planting.cropKey}`);
 		const { cultivar } = planting;
-		return t(cultivar ? "screen.plantingTitle" : "screen.cropTitle", { title, crop, cultivar });
+		return t(cultivar ? "step.planting" : "step.crop", { title, crop, cultivar });
 	};
 }
