@@ -22,6 +22,7 @@ const files: [string, number][] = [
 	["change_expected.csv", 1258],
 	["change_mean5_expected.json", 60],
 	["days_expected.csv", 756],
+	["days_calendar.csv", 53],
 	["review_hb_effects.csv", 408],
 	["review_hb_expected.csv", 231],
 	["review_z_expected.csv", 512],

@@ -1,12 +1,14 @@
 import { comparing } from "#tests/reference/checking.ts";
 import type { Checker } from "#tests/reference/verify/checker.ts";
 import { checkAllocation } from "#tests/reference/estimation/allocation.ts";
+import { checkCalendar } from "#tests/reference/estimation/calendar.ts";
 import { checkWeights } from "#tests/reference/estimation/calibrations.ts";
 import { checkChange } from "#tests/reference/estimation/change.ts";
 import { checkDays } from "#tests/reference/estimation/days.ts";
 import { checkLoneRespondents } from "#tests/reference/estimation/lone.ts";
 import { checkPublished } from "#tests/reference/estimation/published.ts";
 import { checkNamedFigures } from "#tests/reference/estimation/schools.ts";
+import { checkResponseRates } from "#tests/reference/estimation/response-rates.ts";
 import {
 	checkRatioBounds,
 	checkRatioEffects,
@@ -36,5 +38,7 @@ export const checkers: Checker[] = [
 	comparing(/^review_hb_expected\.csv$/, checkRatioBounds),
 	comparing(/^review_z_expected\.csv$/, checkRobustScores),
 	comparing(/^review_unit_slip\.csv$/, checkUnitSlips),
+	comparing(/^response-rates\.md$/, checkResponseRates),
+	comparing(/^days_calendar\.csv$/, checkCalendar),
 	comparing(/^days_expected\.csv$/, checkDays),
 ];
