@@ -91,6 +91,7 @@ export interface CollectAnswer {
 export interface CollectFact {
   county_fips: string;
   crop_key: string;
+  is_day: Generated<boolean>;
   measure_key: string;
   operation_id: string;
   owner_id: string;
@@ -98,8 +99,8 @@ export interface CollectFact {
   state_fips: string;
   stratum_key: string;
   survey_id: string;
-  x: number;
-  y: number;
+  x: number | null;
+  y: number | null;
 }
 
 export interface CollectForm {
@@ -242,6 +243,27 @@ export interface CollectSurvey {
 export interface CollectSurveyState {
   state_fips: string;
   survey_id: string;
+}
+
+export interface CollectTally {
+  county_fips: string;
+  crop_key: string;
+  days: Json | null;
+  largest_y: number;
+  m_xx: number;
+  m_xy: number;
+  m_yy: number;
+  measure_key: string;
+  n: number;
+  owners: number;
+  second_y: number;
+  set_aside: number;
+  state_fips: string;
+  stratum_key: string;
+  sum_x: number;
+  sum_y: number;
+  survey_id: string;
+  unanswered: number;
 }
 
 export interface DirectoryCounty {
@@ -437,6 +459,7 @@ export interface DB {
   "collect.submission": CollectSubmission;
   "collect.survey": CollectSurvey;
   "collect.survey_state": CollectSurveyState;
+  "collect.tally": CollectTally;
   "directory.county": DirectoryCounty;
   "directory.county_neighbor": DirectoryCountyNeighbor;
   "directory.crop": DirectoryCrop;

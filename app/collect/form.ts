@@ -140,13 +140,16 @@ const LinearForm = z.object({
 /** 1 for an operation where the condition holds for its sums, else 0. */
 const Indicator = z.object({ indicator: Condition });
 const One = z.object({ one: z.literal(true) });
-export const Quantity = z.union([LinearForm, Indicator, One]);
+/** The day of the year that a date question tells, 1 to 366: of the crop's plantings the earliest, unless the latest is taken. */
+const DayOfYear = z.object({ day: Key, take: z.enum(["earliest", "latest"]).optional() });
+export const Quantity = z.union([LinearForm, Indicator, One, DayOfYear]);
 export type Quantity = z.infer<typeof Quantity>;
 
 /** What a survey estimates, declared as data: a new measure needs no code. */
 export const Measure = z.object({
 	key: z.string().regex(/^[a-z][a-z0-9_]*(\.[a-z0-9_]+)?$/),
-	kind: z.enum(["ratio", "mean", "total", "proportion"]),
+	/** `day`: median and quartiles of a day of the year. */
+	kind: z.enum(["ratio", "mean", "total", "proportion", "day"]),
 	label: Words,
 	description: Words,
 	unit: z.enum(["percent", "lb_per_tree", "lb", "trees", "operations", "percent_of_normal", "score"]),
@@ -170,6 +173,9 @@ export const Measure = z.object({
 	base: z.boolean().default(false),
 });
 export type Measure = z.infer<typeof Measure>;
+/** A measure that is estimated from sums; one of days is from its histogram. */
+export type SummedMeasure = Measure & { kind: Exclude<Measure["kind"], "day"> };
+export const isSummed = (measure: Measure): measure is SummedMeasure => measure.kind !== "day";
 
 export const FormDefinition = z
 	.object({

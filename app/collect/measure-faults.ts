@@ -14,6 +14,13 @@ export function* measureFaults(measure: Measure, path: Path, byKey: Map<string, 
 		yield { path, message: `${what} needs a denominator if and only if it is no total` };
 	if (measure.crops && measure.acrossCrops)
 		yield { path, message: `${what} is told of some crops, and cannot be told of all together` };
+	if ((measure.kind === "day") !== "day" in measure.numerator || (measure.denominator && "day" in measure.denominator))
+		yield {
+			path,
+			message: `${what} takes a day of the year if and only if it is one of days, and then as its numerator`,
+		};
+	if (measure.kind === "day" && !(measure.denominator && "one" in measure.denominator))
+		yield { path, message: `${what} is one of days, and has another denominator than one` };
 	for (const part of ["numerator", "denominator"] as const) {
 		const quantity = measure[part];
 		if (quantity) yield* quantityFaults(quantity, what, [...path, part], byKey);
@@ -22,7 +29,10 @@ export function* measureFaults(measure: Measure, path: Path, byKey: Map<string, 
 
 function* quantityFaults(quantity: Quantity, what: string, path: Path, byKey: Map<string, Placed>): Generator<Fault> {
 	if ("one" in quantity) return;
-	if ("indicator" in quantity) yield* indicatorFaults(quantity.indicator, what, path, byKey);
+	if ("day" in quantity) {
+		if (byKey.get(quantity.day)?.question.type !== "date")
+			yield { path, message: `${what} takes its day from "${quantity.day}", which is no date question` };
+	} else if ("indicator" in quantity) yield* indicatorFaults(quantity.indicator, what, path, byKey);
 	else for (const term of quantity.terms) yield* termFaults(term, what, path, byKey);
 }
 

@@ -1,6 +1,6 @@
 import { sql } from "kysely";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
-import { FormDefinition } from "#app/collect/form.ts";
+import { FormDefinition, isSummed } from "#app/collect/form.ts";
 import { Words } from "#app/lib/words.ts";
 import { listAreas } from "#app/directory/areas.server.ts";
 import { estimateSurvey } from "#app/estimate/survey.ts";
@@ -97,7 +97,7 @@ async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | un
 			all: { asked: total("asked"), answered: total("answered") },
 			states,
 			setAside: tallies.reduce((sum, tally) => sum + tally.setAside, 0),
-			measures: definition.measures.filter((measure) => !measure.base),
+			measures: definition.measures.filter(isSummed).filter((measure) => !measure.base),
 			areas,
 			cropKeys: row.crop_keys,
 		},

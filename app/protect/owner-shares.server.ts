@@ -31,7 +31,7 @@ export async function listOwnerShares(
 		with fact as (
 			select crop_key, operation_id, owner_id, county_fips, measure_key, y
 			from collect.fact
-			where survey_id = ${surveyId} and not set_aside and crop_key <> ${ALL_CROPS}
+			where survey_id = ${surveyId} and not set_aside and y is not null and crop_key <> ${ALL_CROPS}
 		), owned as (
 			select ${cropKey} as crop_key, ${areaKey} as area_key, f.owner_id,
 				${sql.join([sql`count(distinct f.operation_id)::float8 as ${sql.ref(RESPONDENTS)}`, ...baseKeys.map(baseSum)])}

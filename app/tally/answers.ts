@@ -1,4 +1,5 @@
 import type { Answer, FormDefinition, Question, Screen, Share, Term } from "#app/collect/form.ts";
+import { dayOfDate } from "#app/lib/day-of-year.ts";
 import { evaluate, type ConditionValue, type Known } from "#app/lib/condition.ts";
 
 /** `bearingTrees` is what the directory knew of a planting when the answers were sent in. */
@@ -52,6 +53,27 @@ export class Answers {
 			sum += (term.times * value * part) / 100;
 		}
 		return sum;
+	}
+
+	/** A date's day of the year; where each planting has one, the earliest or latest, null unless all that were asked told it. */
+	dayOf(question: string, take: "earliest" | "latest", cropKey: string): number | null {
+		if (this.isMissing(question, cropKey)) return null;
+		const plantingIds = this.isPerPlanting(question) ? this.plantingsOf(cropKey).map((one) => one.plantingId) : [null];
+		const days = plantingIds.flatMap((id) => {
+			const value = this.given.get(place(question, id));
+			const day = typeof value === "string" ? dayOfDate(value) : null;
+			return day === null ? [] : [day];
+		});
+		if (days.length === 0) return null;
+		return take === "earliest" ? Math.min(...days) : Math.max(...days);
+	}
+
+	/** Whether a question was asked, of the operation or of a planting of the crop, and has no value there. */
+	isMissing(question: string, cropKey: string): boolean {
+		const asked = this.asked.get(question);
+		if (!asked) return false;
+		const plantingIds = asked.screen.perPlanting ? this.plantingsOf(cropKey).map((one) => one.plantingId) : [null];
+		return plantingIds.some((id) => !this.given.has(place(question, id)) && !this.isHidden(asked, id));
 	}
 
 	/** A planting question's sum over the crop's plantings, null unless each has a number; else the one answer. */

@@ -1,11 +1,13 @@
-import type { Transaction } from "kysely";
+import type { Insertable, Transaction } from "kysely";
 import type { DB } from "#db/schema.ts";
 import type { Submission } from "#app/collect/answer-rows.server.ts";
 import type { FormDefinition } from "#app/collect/form.ts";
-import { factsOf } from "./facts.ts";
+import { type Fact, factsOf, type SubmittedResponse, type Unanswered, unansweredOf } from "./facts.ts";
+
+type FactRow = { measure_key: string; crop_key: string; y: number | null; x: number | null; is_day: boolean };
 
 /**
- * Rewrites the facts of one response from its newest submission, under the owner, county, state and stratum of the frozen
+ * Brings the facts of one response to its newest submission, under the owner, county, state and stratum of the frozen
  * frame. What review set aside stays so while its figures are the same; new figures are judged anew. A response that was
  * never sent in has no facts, nor one that was withdrawn. The caller holds the response locked.
  */
@@ -27,19 +29,80 @@ export async function writeFacts(trx: Transaction<DB>, responseId: string): Prom
 		.executeTakeFirst();
 	if (!sent) return;
 	const { answers: submission, definition, ...frame } = sent;
-	const before = await trx
-		.deleteFrom("collect.fact")
+	const wanted = factRows(definition as FormDefinition, submission as Submission);
+	const held = await trx
+		.selectFrom("collect.fact")
 		.where("survey_id", "=", frame.survey_id)
 		.where("operation_id", "=", frame.operation_id)
-		.returning(["measure_key", "crop_key", "y", "x", "set_aside"])
+		.select(["measure_key", "crop_key", "y", "x", "is_day"])
 		.execute();
-	const setAside = new Set(before.filter((fact) => fact.set_aside).map(figuresOf));
-	const facts = factsOf(definition as FormDefinition, submission as Submission)
-		.map(({ measureKey, cropKey, y, x }) => ({ ...frame, measure_key: measureKey, crop_key: cropKey, y, x }))
-		.map((fact) => ({ ...fact, set_aside: setAside.has(figuresOf(fact)) }));
-	if (facts.length > 0) await trx.insertInto("collect.fact").values(facts).execute();
+	await dropFacts(trx, frame, held.filter(without(wanted, cellOf)));
+	await putFacts(
+		trx,
+		wanted.filter(without(held, rowOf)).map((fact) => ({ ...frame, ...fact })),
+	);
 }
 
-function figuresOf(fact: { measure_key: string; crop_key: string; y: number; x: number }): string {
-	return [fact.measure_key, fact.crop_key, fact.y, fact.x].join(" ");
+/**
+ * What a response's facts are as rows. An answer that was asked for and not given is a row without figures, so that it is
+ * counted where it is missing.
+ */
+export function factRows(definition: FormDefinition, response: SubmittedResponse): FactRow[] {
+	const days = new Set(definition.measures.filter(({ kind }) => kind === "day").map(({ key }) => key));
+	const facts: (Unanswered & Partial<Fact>)[] = [
+		...factsOf(definition, response),
+		...unansweredOf(definition, response),
+	];
+	return facts.map(({ measureKey, cropKey, y = null, x = null }) => ({
+		measure_key: measureKey,
+		crop_key: cropKey,
+		y,
+		x,
+		is_day: days.has(measureKey),
+	}));
+}
+
+async function dropFacts(
+	trx: Transaction<DB>,
+	{ survey_id, operation_id }: { survey_id: string; operation_id: string },
+	gone: Pick<FactRow, "measure_key" | "crop_key">[],
+): Promise<void> {
+	if (gone.length === 0) return;
+	await trx
+		.deleteFrom("collect.fact")
+		.where("survey_id", "=", survey_id)
+		.where("operation_id", "=", operation_id)
+		.where((eb) => eb.or(gone.map(({ measure_key, crop_key }) => eb.and({ measure_key, crop_key }))))
+		.execute();
+}
+
+/** One statement for new and changed facts alike, so that their tallies are made anew once. */
+async function putFacts(trx: Transaction<DB>, facts: Insertable<DB["collect.fact"]>[]): Promise<void> {
+	if (facts.length === 0) return;
+	await trx
+		.insertInto("collect.fact")
+		.values(facts)
+		.onConflict((conflict) =>
+			conflict.columns(["survey_id", "measure_key", "crop_key", "operation_id"]).doUpdateSet((eb) => ({
+				y: eb.ref("excluded.y"),
+				x: eb.ref("excluded.x"),
+				is_day: eb.ref("excluded.is_day"),
+				set_aside: false,
+			})),
+		)
+		.execute();
+}
+
+/** Whether a row has no like among the others. */
+function without<T>(others: T[], keyOf: (row: T) => string): (row: T) => boolean {
+	const keys = new Set(others.map(keyOf));
+	return (row) => !keys.has(keyOf(row));
+}
+
+function cellOf({ measure_key, crop_key }: FactRow): string {
+	return `${measure_key} ${crop_key}`;
+}
+
+function rowOf(fact: FactRow): string {
+	return [cellOf(fact), fact.y, fact.x, fact.is_day].join(" ");
 }

@@ -1,8 +1,10 @@
-import type { FormDefinition, Quantity } from "#app/collect/form.ts";
+import type { FormDefinition, Measure, Quantity } from "#app/collect/form.ts";
 import { evaluate } from "#app/lib/condition.ts";
 import { Answers, type SubmittedResponse } from "./answers.ts";
+import { questionsOfMeasure } from "./measure-questions.ts";
 
 export type Fact = { measureKey: string; cropKey: string; y: number; x: number };
+export type Unanswered = Pick<Fact, "measureKey" | "cropKey">;
 export type { SubmittedResponse };
 
 /**
@@ -18,21 +20,45 @@ export type { SubmittedResponse };
  */
 export function factsOf(definition: FormDefinition, response: SubmittedResponse): Fact[] {
 	const answers = new Answers(definition, response);
+	return listCells(definition, response).flatMap(({ measure, cropKey }) => {
+		const figures = figuresOf(measure, answers, cropKey);
+		return figures ? [{ measureKey: measure.key, cropKey, ...figures }] : [];
+	});
+}
+
+/**
+ * The measures and crops to which an operation was asked and gave no fact: a question that the measure needs was not known,
+ * refused or left blank. What was not asked, since its condition does not hold, is not among them. A condition that an
+ * answer not given leaves open counts as asked: what hangs on it is not known either.
+ */
+export function unansweredOf(definition: FormDefinition, response: SubmittedResponse): Unanswered[] {
+	const answers = new Answers(definition, response);
+	return listCells(definition, response)
+		.filter(({ measure, cropKey }) => !figuresOf(measure, answers, cropKey))
+		.filter(({ measure, cropKey }) => questionsOfMeasure(measure).some((key) => answers.isMissing(key, cropKey)))
+		.map(({ measure, cropKey }) => ({ measureKey: measure.key, cropKey }));
+}
+
+/** What a response can be asked for: each measure, for each crop that it is told of and the operation has. */
+function listCells({ measures }: FormDefinition, response: SubmittedResponse): { measure: Measure; cropKey: string }[] {
 	const crops = [...new Set(response.plantings.map((planting) => planting.cropKey))];
-	return definition.measures.flatMap((measure) =>
+	return measures.flatMap((measure) =>
 		[
 			...crops.filter((crop) => measure.crops?.includes(crop) ?? true),
 			...(measure.acrossCrops && crops.length > 0 ? ["all"] : []),
-		].flatMap((cropKey) => {
-			const y = quantityOf(measure.numerator, answers, cropKey);
-			const x = measure.denominator === null ? 1 : quantityOf(measure.denominator, answers, cropKey);
-			return y === null || x === null ? [] : [{ measureKey: measure.key, cropKey, y, x }];
-		}),
+		].map((cropKey) => ({ measure, cropKey })),
 	);
+}
+
+function figuresOf(measure: Measure, answers: Answers, cropKey: string): { y: number; x: number } | null {
+	const y = quantityOf(measure.numerator, answers, cropKey);
+	const x = measure.denominator === null ? 1 : quantityOf(measure.denominator, answers, cropKey);
+	return y === null || x === null ? null : { y, x };
 }
 
 function quantityOf(quantity: Quantity, answers: Answers, cropKey: string): number | null {
 	if ("one" in quantity) return 1;
+	if ("day" in quantity) return answers.dayOf(quantity.day, quantity.take ?? "earliest", cropKey);
 	if ("indicator" in quantity) {
 		const holds = evaluate(quantity.indicator, answers.summed(cropKey));
 		return holds === null ? null : Number(holds);

@@ -25,6 +25,24 @@ export type Tally = Moments & {
 	setAside: number;
 };
 
+/** A histogram of days of the year: how many operations told each. */
+export type DayCount = { value: number; n: number };
+
+/**
+ * A tally as the database keeps it. Owners and their two largest sums of y are those of this one cell: they are for a look
+ * at the cell, and `listOwnerShares` counts them for each area.
+ */
+export type KeptTally = Tally & {
+	owners: number;
+	/** What the owner with most has, and the next: sums of y over the owner's operations; 0 where there is none. */
+	largestY: number;
+	secondY: number;
+	/** For a measure of days alone, days rising; null for others and where nobody told one. */
+	days: DayCount[] | null;
+	/** Operations that were asked and gave no answer that the measure could use: don't know, refused or left blank. */
+	unanswered: number;
+};
+
 /**
  * A stratum of a survey's frame for one crop, as frozen at opening: a state's operations of one size class.
  * `sizeClass` is a rank that rises with size; `frameSize` counts the stratum's operations that have the crop.

@@ -2,7 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { FormDefinition } from "#app/collect/form.ts";
 import { afterHarvest } from "#app/collect/forms/after-harvest.ts";
-import { factsOf } from "#app/tally/facts.ts";
+import { factRows } from "#app/tally/facts.server.ts";
 import type { Asked, Reply, SeedResponse } from "./replies.ts";
 import type { Season } from "./seasons.ts";
 
@@ -67,14 +67,15 @@ export async function insertFacts(trx: Trx, { surveyId }: Season, asked: Asked[]
 	const rows = replies.flatMap(({ operation_id, response }) => {
 		const sent = response?.submissions.at(-1);
 		if (!sent) return [];
-		const facts = factsOf(definition, { plantings: plantingsOf.get(operation_id) ?? [], answers: sent.answers });
+		const facts = factRows(definition, { plantings: plantingsOf.get(operation_id) ?? [], answers: sent.answers });
 		return facts.map((fact) => ({ ...fact, operation_id }));
 	});
 	await sql`insert into collect.fact (survey_id, measure_key, crop_key, operation_id, owner_id, county_fips, state_fips,
-			stratum_key, y, x)
-		select f.survey_id, r."measureKey", r."cropKey", f.operation_id, f.owner_id, f.county_fips, f.state_fips, f.stratum_key, r.y, r.x
+			stratum_key, y, x, is_day)
+		select f.survey_id, r.measure_key, r.crop_key, f.operation_id, f.owner_id, f.county_fips, f.state_fips, f.stratum_key,
+			r.y, r.x, r.is_day
 		from jsonb_to_recordset(${JSON.stringify(rows)}::jsonb)
-			as r(operation_id uuid, "measureKey" text, "cropKey" text, y float8, x float8)
+			as r(operation_id uuid, measure_key text, crop_key text, y float8, x float8, is_day boolean)
 		join collect.frame_operation f on f.survey_id = ${surveyId} and f.operation_id = r.operation_id`.execute(trx);
 }
 

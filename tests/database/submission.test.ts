@@ -42,9 +42,10 @@ async function leftBy(surveyId: string) {
 }
 
 async function factsIn(surveyId: string): Promise<Record<string, [number, number]>> {
-	const { rows } = await owner.query("select measure_key, crop_key, y, x from collect.fact where survey_id = $1", [
-		surveyId,
-	]);
+	const { rows } = await owner.query(
+		"select measure_key, crop_key, y, x from collect.fact where survey_id = $1 and y is not null",
+		[surveyId],
+	);
 	return Object.fromEntries(rows.map((row) => [`${row.measure_key} ${row.crop_key}`, [row.y, row.x]]));
 }
 
@@ -179,6 +180,18 @@ describe("sending in", () => {
 			"base.normal_crop_lb apple": [4000, 1],
 			"base.normal_crop_lb all": [4000, 1],
 		});
+		// Asked and not told: counted where it is missing.
+		const { rows } = await owner.query(
+			"select measure_key from collect.tally where survey_id = $1 and crop_key = 'apple' and unanswered = 1 order by 1",
+			[place.surveyId],
+		);
+		expect(rows.map((row) => row.measure_key)).toEqual([
+			"base.harvested_lb",
+			"crop_loss",
+			"freeze_loss",
+			"total_loss",
+			"yield_per_tree",
+		]);
 	});
 
 	test("a harvest of zero is a whole loss, and causes that were skipped make no fact", async () => {

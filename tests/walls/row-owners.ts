@@ -2,7 +2,14 @@ import type { Client } from "pg";
 import { addOperation, addPerson, loadPlaces } from "#tests/database/surveys-fixture.ts";
 
 /** One operation and the keys by which its rows are found in every table that holds some. */
-export type Holder = { operation_id: string; owner_id: string; response_id: string; release_draft_id: string };
+export type Holder = {
+	operation_id: string;
+	owner_id: string;
+	response_id: string;
+	release_draft_id: string;
+	/** Of a measure that nobody else has facts of, so that its tally is this operation's alone. */
+	measure_key: string;
+};
 export type Holders = { iowa: Holder; neighbor: Holder; wisconsin: Holder };
 
 /**
@@ -56,10 +63,11 @@ async function addHolder(owner: Client, surveyId: string, draftId: string, state
 		"insert into collect.personal_link (survey_id, operation_id, token_hash, expires_at) values ($1, $2, gen_random_uuid()::text, now())",
 		ids,
 	);
+	const measureKey = `loss_${operationId}`;
 	await owner.query(
-		`insert into collect.fact select survey_id, 'crop_loss', 'apple', operation_id, owner_id, county_fips, state_fips,
+		`insert into collect.fact select survey_id, $3, 'apple', operation_id, owner_id, county_fips, state_fips,
 			stratum_key, 120, 400 from collect.frame_operation where survey_id = $1 and operation_id = $2`,
-		ids,
+		[...ids, measureKey],
 	);
 	const responseId = await idOf(
 		owner,
@@ -74,7 +82,13 @@ async function addHolder(owner: Client, surveyId: string, draftId: string, state
 	await owner.query("insert into collect.submission (response_id, version, answers) values ($1, 1, '{}')", [
 		responseId,
 	]);
-	return { operation_id: operationId, owner_id: ownerId, response_id: responseId, release_draft_id: draftId };
+	return {
+		operation_id: operationId,
+		owner_id: ownerId,
+		response_id: responseId,
+		release_draft_id: draftId,
+		measure_key: measureKey,
+	};
 }
 
 async function idOf(owner: Client, query: string, values: unknown[] = []): Promise<string> {

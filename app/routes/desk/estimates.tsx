@@ -5,6 +5,7 @@ import type { Route } from "./+types/estimates";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import { isSummed } from "#app/collect/form.ts";
 import { findSurveyForm } from "#app/collect/forms.server.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { Button } from "#app/components/button.tsx";
@@ -33,7 +34,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	return { ...found, choice };
 }
 
-/** Estimates of the viewer's own states, made afresh from the facts that the viewer may see. */
+/** Estimates of the viewer's own states, made afresh from the tallies that the viewer may see. */
 async function draftEstimates(trx: Trx, viewer: Associate, surveyId: string, choice: z.infer<typeof Choice>) {
 	const survey = await findSurvey(trx, viewer, surveyId);
 	const definition = survey && (await findSurveyForm(trx, surveyId));
@@ -41,9 +42,9 @@ async function draftEstimates(trx: Trx, viewer: Associate, surveyId: string, cho
 	const areas = await listAreas(trx, viewer.stateFips);
 	const parentOf = new Map(areas.map((area) => [area.key, area.parentKey]));
 	const pathOf = (key: string): string[] => [key, ...(parentOf.get(key) ? pathOf(parentOf.get(key)!) : [])];
-	const measures = definition.measures.filter(
-		(measure) => !measure.base && (choice.crop !== "all" || measure.acrossCrops),
-	);
+	const measures = definition.measures
+		.filter(isSummed)
+		.filter((measure) => !measure.base && (choice.crop !== "all" || measure.acrossCrops));
 	const { estimates } = estimateSurvey({
 		measures,
 		frame: await listFrameStrata(trx, surveyId),
