@@ -48,6 +48,7 @@ export default [
 		...prefix("orchard", [
 			layout("routes/grower/orchard-layout.tsx", [
 				index("routes/grower/orchard.tsx"),
+				route("compare/:surveyId", "routes/grower/compare.tsx"),
 				...prefix(":operationId", [
 					route("answers/:surveyId", "routes/grower/own-answers.tsx"),
 					route("plantings", "routes/grower/plantings.tsx"),

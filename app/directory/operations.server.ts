@@ -125,6 +125,7 @@ export async function findOperation(trx: Trx, viewer: Associate, operationId: st
 			"o.phone",
 			"o.mass_unit as massUnit",
 			"o.mail_wanted as mailWanted",
+			"o.mail_returned_at as mailReturnedAt",
 			"c.district_key as districtKey",
 			"s.time_zone as timeZone",
 		])

@@ -4,16 +4,22 @@ import { z } from "zod";
 import type { Route } from "./+types/grower";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
 import { sendNewLink } from "#app/collect/new-link.server.ts";
 import { listOperationSurveys } from "#app/collect/operation-surveys.server.ts";
+import { markReachable } from "#app/collect/reach.server.ts";
 import { DescriptionList } from "#app/components/description-list.tsx";
+import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
+import { mendAddress } from "#app/directory/mail-address.server.ts";
 import { findOperation } from "#app/directory/operations.server.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import { AddressForm } from "./parts/address-form.tsx";
 import { useGrowerName } from "./parts/grower-name.ts";
 import { PlantingTable } from "./parts/planting-table.tsx";
 import { SurveysOfGrower } from "./parts/surveys-of-grower.tsx";
@@ -28,20 +34,40 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	return found;
 }
 
-const LinkForm = z.object({ surveyId: z.guid(), wave: z.coerce.number().int().min(1) });
+const Step = z.discriminatedUnion("step", [
+	z.object({ step: z.literal("link"), surveyId: z.guid(), wave: z.coerce.number().int().min(1) }),
+	z.object({ step: z.literal("address"), email: z.email("email_wrong").max(254, "too_long").optional() }),
+]);
 
-/** Sends a new personal link for one survey; the links sent before end. */
+/** Sends a new personal link for one survey, which ends the links sent before; or mends the address that mail goes to. */
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
-	const form = parseForm(LinkForm, await request.formData());
-	if (!form.ok) throw refusal("form_not_understood");
+	const form = parseForm(Step, await request.formData());
+	if (!form.ok && form.values.step !== "address") throw refusal("form_not_understood");
+	if (!form.ok) return data({ refused: null, values: form.values, problems: form.problems }, { status: 400 });
 
-	const { surveyId, wave } = form.value;
-	const outcome = await desk.transaction((trx) => sendNewLink(trx, desk.viewer, surveyId, params.operationId, wave));
+	const { value: step } = form;
+	const { operationId } = params;
+	const outcome = await desk.transaction(async (trx) =>
+		step.step === "link"
+			? sendNewLink(trx, desk.viewer, step.surveyId, operationId, step.wave)
+			: mend(trx, desk.viewer, operationId, step.email ?? null),
+	);
 	if (outcome === "not_found") throw refusal("operation_not_found");
-	if (typeof outcome === "string") return data({ refused: outcome }, { status: 409 });
-	context.get(sessionContext).flash("toast", { key: "desk:grower.linkSent", values: { name: outcome.name } });
+	if (typeof outcome === "string") return data({ refused: outcome, values: undefined, problems: [] }, { status: 409 });
+	const toast =
+		"name" in outcome
+			? { key: "desk:grower.linkSent", values: { name: outcome.name } }
+			: { key: "desk:grower.address.saved" };
+	context.get(sessionContext).flash("toast", toast);
 	return redirect(href("/desk/growers/:operationId", params), 303);
+}
+
+async function mend(trx: Trx, viewer: Associate, operationId: string, email: string | null) {
+	const mended = await mendAddress(trx, viewer, operationId, email);
+	if (mended === "not_found") return mended;
+	if (mended === "mended") await markReachable(trx, operationId);
+	return { mended };
 }
 
 export default function GrowerPage({ loaderData, actionData }: Route.ComponentProps) {
@@ -53,8 +79,17 @@ export default function GrowerPage({ loaderData, actionData }: Route.ComponentPr
 			<p className="no-print mb-4">
 				<Link to={href("/desk/growers")}>{t("grower.back")}</Link>
 			</p>
-			{actionData && <Notice tone="attention">{t(`grower.refused.${actionData.refused}`)}</Notice>}
+			<ErrorSummary problems={actionData?.problems} labels={{ email: t("grower.email") }} />
+			{actionData?.refused && <Notice tone="attention">{t(`grower.refused.${actionData.refused}`)}</Notice>}
 			<Contact operation={operation} />
+			{operation.status === "active" && (
+				<AddressForm
+					email={operation.email}
+					returned={operation.mailReturnedAt !== null}
+					values={actionData?.values}
+					problems={actionData?.problems}
+				/>
+			)}
 			<Section title={t("grower.plantings")}>
 				<PlantingTable plantings={operation.plantings} />
 			</Section>

@@ -98,6 +98,15 @@ function SurveyState({ survey }: { survey: Operation["surveys"][number] }) {
 						{t("home.see")}
 					</Link>
 				)}
+				{submittedAt && !isOpen && (
+					<Link
+						to={href("/orchard/compare/:surveyId", { surveyId })}
+						aria-label={t("home.compareOf", { survey: name })}
+						className="inline-flex min-h-11 items-center"
+					>
+						{t("home.compare")}
+					</Link>
+				)}
 			</div>
 		</>
 	);

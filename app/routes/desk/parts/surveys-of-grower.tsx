@@ -94,6 +94,7 @@ function NewLink({ survey, surveyName, operation }: NewLinkProps) {
 				body={t("grower.newLinkBody", { email: operation.email })}
 				confirmLabel={t("grower.newLinkConfirm")}
 			>
+				<input type="hidden" name="step" value="link" />
 				<input type="hidden" name="surveyId" value={survey.surveyId} />
 				<input type="hidden" name="wave" value={survey.linkWave} />
 			</Confirm>

@@ -1,0 +1,71 @@
+import { underScope, type Trx } from "#app/auth/scope.server.ts";
+import type { Grower } from "#app/auth/viewer.ts";
+import { FormDefinition, type Measure, type Words } from "./form.ts";
+import { isId } from "./surveys.server.ts";
+
+export type OwnFigure = { measureKey: string; cropKey: string; value: number; kind: Measure["kind"] };
+export type OwnFacts = { operationId: string; name: string; countyFips: string; figures: OwnFigure[] };
+
+/**
+ * What the viewer's operations told in one survey, as the survey's measures count it, and the release that told of it.
+ * @returns undefined where none of them was asked.
+ */
+export async function findOwnFacts(trx: Trx, viewer: Grower, surveyId: string) {
+	if (!isId(surveyId) || viewer.link) return undefined;
+	const rows = await trx
+		.selectFrom("collect.frame_operation as f")
+		.innerJoin("collect.survey as s", "s.survey_id", "f.survey_id")
+		.innerJoin("collect.form_version as v", "v.form_version_id", "s.form_version_id")
+		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
+		.where("f.survey_id", "=", surveyId)
+		.where("f.operation_id", "in", viewer.operationIds)
+		.where("o.status", "=", "active")
+		.select(["f.operation_id as operationId", "f.county_fips as countyFips", "o.name"])
+		.select(["s.season", "s.title", "v.definition"])
+		.orderBy("o.name")
+		.orderBy("f.operation_id")
+		.execute();
+	const first = rows[0];
+	if (!first) return undefined;
+	const { measures } = FormDefinition.parse(first.definition);
+	const operations: OwnFacts[] = [];
+	for (const { operationId, countyFips, name } of rows) {
+		const figures = await listFigures(trx, surveyId, operationId, measures);
+		operations.push({ operationId, countyFips, name, figures });
+	}
+	return {
+		season: first.season,
+		title: first.title as Words,
+		releaseId: await underScope(trx, { kind: "network" }, () => findReleaseId(trx, surveyId)),
+		operations,
+	};
+}
+
+/** A total says nothing beside that of a whole county, so it is left out; so are quantities that no release tells. */
+async function listFigures(trx: Trx, surveyId: string, operationId: string, measures: Measure[]) {
+	const facts = await trx
+		.selectFrom("collect.fact")
+		.select(["measure_key", "crop_key", "y", "x"])
+		.where("survey_id", "=", surveyId)
+		.where("operation_id", "=", operationId)
+		.execute();
+	return measures
+		.filter(({ kind, base }) => kind !== "total" && !base)
+		.flatMap(({ key, kind, scale }) =>
+			facts
+				.filter((fact) => fact.measure_key === key && fact.crop_key !== "all" && fact.x !== 0)
+				.map(({ crop_key, y, x }): OwnFigure => {
+					return { measureKey: key, cropKey: crop_key, kind, value: (y / x) * scale };
+				}),
+		);
+}
+
+async function findReleaseId(trx: Trx, surveyId: string): Promise<string | null> {
+	const draft = await trx
+		.selectFrom("collect.release_draft")
+		.select("release_id")
+		.where("survey_id", "=", surveyId)
+		.where("status", "=", "approved")
+		.executeTakeFirst();
+	return draft?.release_id ?? null;
+}
