@@ -34,6 +34,7 @@ export default [
 	route("sign-in/callback", "routes/public/sign-in-callback.ts"),
 
 	route("orchard/:file", "routes/grower/my-data.ts"),
+	route("orchard/:operationId/answers/:surveyId/photos/:photoId", "routes/grower/own-photo.ts"),
 
 	// Growers: one column, nothing but the question.
 	layout("routes/grower/layout.tsx", [
@@ -63,10 +64,12 @@ export default [
 	]),
 	route("answer/:surveyId/:operationId/keep/:screen", "routes/grower/keep.ts"),
 	route("answer/:surveyId/:operationId/pack", "routes/grower/pack.ts"),
+	route("answer/:surveyId/:operationId/photos/:photoId", "routes/grower/photo.ts"),
 	// What a phone draws these pages with where there is no signal.
 	route("answer/offline", "routes/grower/offline.tsx"),
 	route("answer/worker.js", "routes/grower/worker.ts"),
 
+	route("desk/surveys/:surveyId/responses/:responseId/photos/:photoId", "routes/desk/photo.ts"),
 	...prefix("desk", [
 		layout("routes/desk/layout.tsx", [
 			index("routes/desk/overview.tsx"),

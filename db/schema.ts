@@ -163,6 +163,17 @@ export interface CollectPersonalLink {
   token_hash: string;
 }
 
+export interface CollectPhoto {
+  added_at: Generated<Timestamp>;
+  file_name: string;
+  height_px: number;
+  photo_id: string;
+  question_key: string;
+  response_id: string;
+  size_bytes: number;
+  width_px: number;
+}
+
 export interface CollectReleaseDraft {
   audit: Json | null;
   checksum: string | null;
@@ -452,6 +463,7 @@ export interface DB {
   "collect.frame_operation": CollectFrameOperation;
   "collect.mailing": CollectMailing;
   "collect.personal_link": CollectPersonalLink;
+  "collect.photo": CollectPhoto;
   "collect.release_draft": CollectReleaseDraft;
   "collect.release_draft_cell": CollectReleaseDraftCell;
   "collect.reminder": CollectReminder;

@@ -10,6 +10,8 @@ export type ShownAnswer =
 	| { kind: "day"; day: string }
 	| { kind: "words"; words: Words[] }
 	| { kind: "text"; text: string }
+	/** None where photos were added, and taken away since. */
+	| { kind: "photos"; photoIds: string[] }
 	| { kind: "dont_know" }
 	| { kind: "refused" }
 	| { kind: "none" };
@@ -46,6 +48,7 @@ export type Difference = { questionKey: string; text: Words; mine: ShownAnswer; 
 
 /**
  * What a step would say with `mine` in place of the answers it holds, question by question where the two differ.
+ * Photos are no matter of it, since they are kept one by one.
  * @param unread what was typed for questions and could not be read, by question.
  */
 export function listDifferences(
@@ -57,7 +60,8 @@ export function listDifferences(
 	const step = listAllSteps(definition, plantings).find(({ key }) => key === stepKey);
 	const planting = step?.planting ?? null;
 	const [here, there] = [answersByPlace(mine), answersByPlace(answers)];
-	return (step?.screen.questions ?? []).flatMap((question) => {
+	const typedIn = (step?.screen.questions ?? []).filter(({ type }) => type !== "photo");
+	return typedIn.flatMap((question) => {
 		const at = placeOf(question.key, planting?.plantingId ?? null);
 		const typed = unread.get(question.key);
 		const one = typed ? ({ kind: "text", text: typed } as const) : shownAs(question, here.get(at), planting);
@@ -89,7 +93,7 @@ export function shownAs(question: Question, answer: Answer | undefined, planting
 		case "long_text":
 			return { kind: "text", text: String(value) };
 		case "photo":
-			return { kind: "none" };
+			return { kind: "photos", photoIds: Array.isArray(value) ? value : [] };
 	}
 }
 

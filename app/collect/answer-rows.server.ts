@@ -3,6 +3,7 @@ import { type Selectable, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { DB } from "#db/schema.ts";
 import type { Answer, Confirmation } from "./form.ts";
+import { listPhotoAnswers } from "./photo-rows.server.ts";
 import { answersByPlace, placeOf, type PlantingAsked } from "./steps.ts";
 
 /** A planting as it was asked about; what was sent in before trees were kept with it lacks them. */
@@ -18,7 +19,7 @@ export async function listAnswers(trx: Trx, responseId: string): Promise<Answer[
 		.orderBy("a.question_key")
 		.orderBy("a.planting_id")
 		.execute();
-	return rows.map(answerOf);
+	return [...rows.map(answerOf), ...(await listPhotoAnswers(trx, responseId))];
 }
 
 /** Of `collect.answer as a`, what `answerOf` reads. */

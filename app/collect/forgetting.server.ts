@@ -2,13 +2,14 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
 import type { Submission } from "./answer-rows.server.ts";
-import { FormDefinition } from "./form.ts";
+import { FormDefinition, type Question } from "./form.ts";
+import { erasePhotos } from "./photo-rows.server.ts";
 import { replacePersonalLinks } from "./personal-link.server.ts";
 import { withdrawAnswer } from "./withdrawal.server.ts";
 
 /**
  * Takes out of what was collected all by which a leaving grower could be known. Answers on which no release rests are
- * withdrawn and emptied; the others lose their free texts. Surveys that are open count a refusal, and no link works any
+ * withdrawn and emptied; the others lose their free texts. Photos go from all. Surveys that are open count a refusal, and no link works any
  * more. The caller knows that the operation is the viewer's.
  */
 export async function forgetAnswers(trx: Trx, viewer: Grower, operationId: string): Promise<void> {
@@ -20,6 +21,7 @@ export async function forgetAnswers(trx: Trx, viewer: Grower, operationId: strin
 		if (isOpen) await countAsRefused(trx, place);
 		await replacePersonalLinks(trx, place);
 		if (responseId === null) continue;
+		await erasePhotos(trx, responseId);
 		if (withdrawn === "released") await dropTexts(trx, responseId, textKeys(FormDefinition.parse(definition)));
 		else await emptyResponse(trx, responseId);
 	}
@@ -41,11 +43,11 @@ function listAsked(trx: Trx, operationId: string) {
 		.execute();
 }
 
-/** Questions that are answered in a grower's own words. */
+const ownWords = new Set<Question["type"]>(["short_text", "long_text", "photo"]);
+
+/** Questions that are answered in a grower's own words or pictures. */
 function textKeys({ screens }: FormDefinition): string[] {
-	return screens.flatMap(({ questions }) =>
-		questions.filter(({ type }) => type === "short_text" || type === "long_text").map(({ key }) => key),
-	);
+	return screens.flatMap(({ questions }) => questions.filter(({ type }) => ownWords.has(type)).map(({ key }) => key));
 }
 
 async function countAsRefused(trx: Trx, place: { surveyId: string; operationId: string }): Promise<void> {

@@ -15,6 +15,8 @@ export function* faultsOf(form: Form): Generator<Fault> {
 	const byKey = new Map(placed.map((one) => [one.question.key, one]));
 	yield* keyFaults(form, placed);
 	for (const [index, screen] of form.screens.entries()) yield* screenFaults(screen, ["screens", index], byKey);
+	if (placed.filter(({ question }) => question.type === "photo").length > 1)
+		yield { path: ["screens"], message: "two questions ask for photos, of which a response has five in all" };
 	for (const one of placed) {
 		const { question, at, path, screen } = one;
 		const asked = { what: `the condition of "${question.key}"`, before: at, perPlanting: screen.perPlanting };
@@ -65,6 +67,7 @@ function* screenFaults(screen: Screen, path: (string | number)[], byKey: Map<str
 	const asked = { what: `the condition of screen "${screen.key}"`, before: first, perPlanting: screen.perPlanting };
 	if (screen.condition) yield* conditionFaults(screen.condition, asked, path, byKey);
 	yield* checkFaults(screen, first, path, byKey);
+	yield* photoFaults(screen, path);
 	const ofScreen = (key: string) => screen.questions.find((question) => question.key === key);
 	for (const key of screen.sumToHundred ?? []) {
 		if (ofScreen(key)?.type !== "percent")
@@ -79,6 +82,13 @@ function* screenFaults(screen: Screen, path: (string | number)[], byKey: Map<str
 				message: `"${question.key}" comes after "${question.notBefore}", which is no earlier date of its screen`,
 			};
 	}
+}
+
+/** Photos arrive one by one and are none of a step's other answers, which are kept all at once. */
+function* photoFaults({ key, questions, perPlanting }: Screen, path: (string | number)[]): Generator<Fault> {
+	if (!questions.some(({ type }) => type === "photo")) return;
+	if (perPlanting) yield { path, message: `screen "${key}" asks for photos of each planting` };
+	if (questions.length > 1) yield { path, message: `screen "${key}" asks for more than photos` };
 }
 
 function* checkFaults(

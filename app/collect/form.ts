@@ -86,7 +86,8 @@ export const Question = z.discriminatedUnion("type", [
 	}),
 	z.object({ ...questionBase, type: z.literal("short_text"), maxLength: z.number().int().default(200) }),
 	z.object({ ...questionBase, type: z.literal("long_text"), maxLength: z.number().int().default(5000) }),
-	z.object({ ...questionBase, type: z.literal("photo") }),
+	/** Up to five pictures, of the whole operation: each is kept when it arrives, so that it stands alone on its screen. */
+	z.object({ ...questionBase, type: z.literal("photo"), required: z.literal(false) }),
 ]);
 export type Question = z.infer<typeof Question>;
 

@@ -1,12 +1,19 @@
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
+import type { AnswerPlace } from "./answer-place.server.ts";
 import { listAnswers, type Submission } from "./answer-rows.server.ts";
 import { listMails } from "./mail-list.server.ts";
+import { listPhotos } from "./photo-rows.server.ts";
 
 export type MyData = Awaited<ReturnType<typeof readMyData>>;
 
-/** Everything that is kept about a signed-in grower's operations, as it stands, under names that a stranger can read. */
-export async function readMyData(trx: Trx, viewer: Grower) {
+type PhotoAddress = (place: AnswerPlace & { photoId: string }) => string;
+
+/**
+ * Everything that is kept about a signed-in grower's operations, as it stands, under names that a stranger can read.
+ * @param photoAddress where the file of a photo is to be had.
+ */
+export async function readMyData(trx: Trx, viewer: Grower, photoAddress: PhotoAddress) {
 	if (viewer.link) return [];
 	const operations = await selectOperations(trx, viewer).execute();
 	const told = [];
@@ -17,7 +24,7 @@ export async function readMyData(trx: Trx, viewer: Grower) {
 			...directory,
 			pin: longitude === null ? null : { longitude, latitude, set_at },
 			plantings: await listPlantings(trx, operationId),
-			surveys: await listSurveys(trx, operationId),
+			surveys: await listSurveys(trx, operationId, photoAddress),
 		});
 	}
 	return told;
@@ -49,7 +56,7 @@ function listPlantings(trx: Trx, operationId: string) {
 		.execute();
 }
 
-async function listSurveys(trx: Trx, operationId: string) {
+async function listSurveys(trx: Trx, operationId: string, photoAddress: PhotoAddress) {
 	const rows = await trx
 		.selectFrom("collect.frame_operation as f")
 		.innerJoin("collect.survey as s", "s.survey_id", "f.survey_id")
@@ -71,6 +78,15 @@ async function listSurveys(trx: Trx, operationId: string) {
 			title: survey.title as { en: string; es: string },
 			answers_now: responseId ? await listAnswers(trx, responseId) : [],
 			submissions: responseId ? await listSubmissions(trx, responseId) : [],
+			photos: (responseId ? await listPhotos(trx, responseId) : []).map(({ photoId, ...photo }) => ({
+				photo_id: photoId,
+				question_key: photo.questionKey,
+				added_at: photo.addedAt,
+				width_px: photo.widthPx,
+				height_px: photo.heightPx,
+				size_bytes: photo.sizeBytes,
+				file: photoAddress({ surveyId: survey.survey_id, operationId, photoId }),
+			})),
 			mails: (await listMails(trx, survey.survey_id, [operationId])).get(operationId) ?? [],
 		});
 	}

@@ -1,3 +1,4 @@
+import type { PhotoHere } from "./photos-here.ts";
 import type { StepValues } from "./posted.ts";
 import { changeOf, mostUnsure, type SentChange, type StepChanges } from "./step-change.ts";
 
@@ -32,6 +33,8 @@ export type TypedStep = {
 };
 export type Outbox = {
 	steps: Record<string, TypedStep>;
+	/** Photos that the server does not have yet, in the order in which they were taken. */
+	photos: PhotoHere[];
 	/** How many changes were typed so far. */
 	count: number;
 	/** Whether the grower has sent the answers in and the server does not know it yet. */
@@ -39,7 +42,7 @@ export type Outbox = {
 };
 export type KeptAnswer = { kept: boolean; version: number; unread: string[] };
 
-export const emptyOutbox: Outbox = { steps: {}, count: 0, sendIn: false };
+export const emptyOutbox: Outbox = { steps: {}, photos: [], count: 0, sendIn: false };
 
 export function typedStep(outbox: Outbox, stepKey: string): TypedStep | undefined {
 	return Object.hasOwn(outbox.steps, stepKey) ? outbox.steps[stepKey] : undefined;
@@ -138,10 +141,11 @@ export function letGo(outbox: Outbox, stepKey: string): Outbox {
 	return { ...outbox, steps };
 }
 
-/** Steps whose newest answers the server does not have, in the order of typing. */
+/** Steps whose newest answers the server does not have, in the order of typing, and those with photos that it has not. */
 export function listUnsettled(outbox: Outbox): string[] {
 	const steps = Object.entries(outbox.steps).filter(([, { state }]) => state !== "kept");
-	return steps.toSorted(([, one], [, other]) => one.order - other.order).map(([key]) => key);
+	const typed = steps.toSorted(([, one], [, other]) => one.order - other.order).map(([key]) => key);
+	return [...new Set([...typed, ...outbox.photos.map(({ stepKey }) => stepKey)])];
 }
 
 function change(outbox: Outbox, stepKey: string, next: (step: TypedStep) => TypedStep): Outbox {

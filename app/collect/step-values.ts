@@ -81,7 +81,7 @@ function shown(question: Question, answer: Answer | undefined, step: Step, { lan
 		if (answer.given !== null) return answer.given.text;
 		return Array.isArray(answer.value) ? answer.value : String(answer.value ?? "");
 	}
-	if (question.type === "several") return [];
+	if (question.type === "several" || question.type === "photo") return [];
 	return isFromPlantings(question) && step.planting ? String(step.planting.bearingTrees) : "";
 }
 

@@ -154,9 +154,4 @@ describe("conditions on single questions", () => {
 			["planting-p2", ["brown_rot", "black_knot", "none"]],
 		]);
 	});
-	test("a photo is not asked for, as none can be given yet", () => {
-		const photo: Question = { key: "photo", type: "photo", text: words, required: true, sensitive: false };
-		const screens = [{ key: "only", title: words, perPlanting: false, questions: [photo] }];
-		expect(listSteps({ ...form, screens }, one, [])).toEqual([]);
-	});
 });

@@ -59,8 +59,7 @@ export function listAsked(definition: FormDefinition, plantings: PlantingAsked[]
 			condition === undefined || (evaluate(condition, known(step.planting)) ?? whenUnsure !== "skip");
 		const wholeScreen = asks(step.screen);
 		const questions = step.screen.questions.filter((question) => {
-			// Photos are not taken yet: asking for one would leave a step that nobody can finish.
-			if (question.type !== "photo" && wholeScreen && asks(question)) return true;
+			if (wholeScreen && asks(question)) return true;
 			seen.delete(placeOf(question.key, step.planting?.plantingId ?? null));
 			return false;
 		});

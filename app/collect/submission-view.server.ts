@@ -2,6 +2,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import { type AnswerGroup, listAnswerLines } from "./answer-lines.ts";
 import type { Submission } from "./answer-rows.server.ts";
 import type { FormDefinition } from "./form.ts";
+import { withoutErased } from "./photo-rows.server.ts";
 import type { PlantingAsked } from "./steps.ts";
 
 export type SubmissionsView = {
@@ -32,11 +33,13 @@ export async function viewSubmissions(
 		.execute();
 	const shown = submissions.find(({ version }) => version === wanted.version) ?? submissions[0];
 	const submission = shown && (await getSubmission(trx, responseId, shown.version));
-	return {
-		submissions,
-		shownVersion: shown?.version ?? null,
-		groups: submission ? listAnswerLines(definition, await listPlantings(trx, submission), submission.answers) : [],
-	};
+	const view = { submissions, shownVersion: shown?.version ?? null };
+	if (!submission) return { ...view, groups: [] };
+	const photoKeys = definition.screens.flatMap(({ questions }) =>
+		questions.filter(({ type }) => type === "photo").map(({ key }) => key),
+	);
+	const answers = await withoutErased(trx, responseId, submission.answers, photoKeys);
+	return { ...view, groups: listAnswerLines(definition, await listPlantings(trx, submission), answers) };
 }
 
 async function getSubmission(trx: Trx, responseId: string, version: number): Promise<Submission> {

@@ -3,12 +3,14 @@ import { logEvent } from "#app/auth/event-log.server.ts";
 import { underScope, type Trx } from "#app/auth/scope.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
 import { type AnswerPlace, findPlace } from "./answer-place.server.ts";
+import { erasePhotos } from "./photo-rows.server.ts";
 
 export type Withdrawn = "withdrawn" | "already_withdrawn" | "not_found" | "not_sent" | "released";
 
 /**
  * Takes back what an operation sent in, as long as no release rests on it: it counts in no figure from then on, and the
- * operation has refused until it sends in again. What was sent stays as a record that only the grower still reads.
+ * operation has refused until it sends in again. What was sent stays as a record that only the grower still reads; photos
+ * go for good.
  */
 export async function withdrawAnswer(trx: Trx, viewer: Grower, place: AnswerPlace): Promise<Withdrawn> {
 	if (!(await findPlace(trx, viewer, place))) return "not_found";
@@ -26,6 +28,7 @@ export async function withdrawAnswer(trx: Trx, viewer: Grower, place: AnswerPlac
 	if ((await underScope(trx, { kind: "network" }, () => endDrafts(trx, surveyId))) === "released") return "released";
 
 	await markWithdrawn(trx, response.response_id);
+	await erasePhotos(trx, response.response_id);
 	await trx
 		.updateTable("collect.frame_operation")
 		.set({ disposition: "refused", disposition_at: sql`now()` })

@@ -5,6 +5,7 @@ import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { decimalsOf, type Unit } from "#app/lib/format.ts";
 import { DescriptionList } from "./description-list.tsx";
+import { PhotoList } from "./photo-list.tsx";
 import { Section } from "./section.tsx";
 import { useStepTitle } from "./step-title.ts";
 
@@ -12,11 +13,13 @@ type AnswerListProps = {
 	groups: AnswerGroup[];
 	/** Where a group's answers are changed; without it they are only shown. */
 	editHref?: (stepKey: string) => string;
+	/** Where a photo is; without it only how many there are is told. */
+	photoHref?: (photoId: string) => string;
 	level?: 2 | 3;
 };
 
 /** What was answered, question by question, in the unit it was told in: for review, receipt and desk alike. */
-export function AnswerList({ groups, editHref, level = 2 }: AnswerListProps) {
+export function AnswerList({ groups, editHref, photoHref, level = 2 }: AnswerListProps) {
 	const { t, i18n } = useTranslation();
 	const titleOf = useStepTitle();
 	// Where a planting is asked about on several screens, its name alone does not tell them apart.
@@ -38,7 +41,7 @@ export function AnswerList({ groups, editHref, level = 2 }: AnswerListProps) {
 				<DescriptionList
 					items={group.lines.map(({ text, shown }) => ({
 						term: wordsIn(text, i18n.language),
-						detail: <AnswerText shown={shown} />,
+						detail: <AnswerText shown={shown} photoHref={photoHref} />,
 					}))}
 				/>
 			</Section>
@@ -74,7 +77,7 @@ const formatUnit: Record<Exclude<ShownUnit, "count">, Unit> = {
 };
 
 /** One answer in words, in the unit it was told in. */
-export function AnswerText({ shown }: { shown: ShownAnswer }) {
+export function AnswerText({ shown, photoHref }: { shown: ShownAnswer } & Pick<AnswerListProps, "photoHref">) {
 	const { t, i18n } = useTranslation();
 	const format = useFormat();
 	switch (shown.kind) {
@@ -93,6 +96,8 @@ export function AnswerText({ shown }: { shown: ShownAnswer }) {
 			return shown.words.map((words) => wordsIn(words, i18n.language)).join("; ");
 		case "text":
 			return <span className="whitespace-pre-line">{shown.text}</span>;
+		case "photos":
+			return <PhotoList photoIds={shown.photoIds} hrefOf={photoHref} />;
 		case "dont_know":
 		case "refused":
 			return <span className="text-quiet">{t(`answerKind.${shown.kind}`)}</span>;

@@ -3,6 +3,7 @@ import { z } from "zod";
 import { languages } from "#app/i18n/language.ts";
 import { letterKinds } from "#app/mail/templates.ts";
 import { computeReleaseDraft } from "./compute-release-draft.server.ts";
+import { erasePhotoFiles, sweepPhotos } from "./photos.server.ts";
 import type { JobPayloads } from "./queue.server.ts";
 import { sendSample } from "./sample-mail.server.ts";
 import { sendMail } from "./send-mail.server.ts";
@@ -26,4 +27,9 @@ export const tasks: Record<keyof JobPayloads, Task> = {
 	),
 	thank_growers: task(z.object({ releaseDraftId: z.uuid() }), thankGrowers),
 	compute_release_draft: task(z.object({ releaseDraftId: z.uuid() }), (payload) => computeReleaseDraft(payload)),
+	erase_photos: task(z.object({ fileNames: z.array(z.string().regex(/^[0-9a-f]{32}$/)) }), erasePhotoFiles),
+	sweep_photos: task(z.looseObject({}), sweepPhotos),
 };
+
+/** What comes round by itself: the minute and hour in UTC. */
+export const crontab = "40 9 * * * sweep_photos ?max=1&fill=1d";

@@ -1,7 +1,7 @@
 import { Logger, run } from "graphile-worker";
 import { env } from "#app/lib/env.server.ts";
 import { log } from "#app/lib/log.server.ts";
-import { setReminderAlarms, tasks } from "./tasks.server.ts";
+import { crontab, setReminderAlarms, tasks } from "./tasks.server.ts";
 
 // The worker is a process of its own, so that a slow audit never holds up a page. Any number may run beside each other.
 const quiet = new Logger((scope) => (level, message) => {
@@ -13,6 +13,7 @@ const runner = await run({
 	concurrency: 4,
 	pollInterval: 2_000,
 	taskList: tasks,
+	crontab,
 	logger: quiet,
 	noHandleSignals: false,
 });

@@ -1,3 +1,4 @@
+import path from "node:path";
 import { z } from "zod";
 
 const Settings = z.object({
@@ -17,6 +18,12 @@ const Settings = z.object({
 	CODE_VERSION: z.string().default("unversioned"),
 	/** The first coordinator, who grants all other roles: the provider's subject. */
 	COORDINATOR_SUBJECT: z.string().optional(),
+	/** The folder of growers' photos, which every server and worker shares and no web server serves. */
+	PHOTO_DIR: z
+		.string()
+		.min(1)
+		.default(".local/photos")
+		.transform((folder) => path.resolve(folder)),
 });
 export type Settings = z.infer<typeof Settings>;
 
@@ -34,7 +41,10 @@ export function readSettings(source: NodeJS.ProcessEnv): Settings {
 		const names = parsed.error.issues.map((issue) => `${issue.path.join(".")}: ${issue.message}`);
 		throw new Error(`These settings are missing or wrong: ${names.join("; ")}`);
 	}
-	if (parsed.data.NODE_ENV === "production" && !parsed.data.DEMO) refuseFakes(parsed.data);
+	if (parsed.data.NODE_ENV === "production" && !parsed.data.DEMO) {
+		refuseFakes(parsed.data);
+		if (!source.PHOTO_DIR) throw new Error("PHOTO_DIR must be set in production");
+	}
 	return parsed.data;
 }
 

@@ -1,7 +1,8 @@
 // Which services are the caller's and which are made here, and what the server is told of them.
 import { spawnSync } from "node:child_process";
+import { join } from "node:path";
 import { productionProblems } from "./production.mjs";
-import { localSecrets, root } from "./local.mjs";
+import { local, localSecrets, root } from "./local.mjs";
 import { rememberedPort } from "./ports.mjs";
 import { Stop } from "./steps.mjs";
 
@@ -51,6 +52,7 @@ export async function serviceEnvironment(caller, databaseAddresses) {
 	const secrets = localSecrets();
 	const defaults = {
 		SESSION_SECRET: secrets.session,
+		PHOTO_DIR: join(local, "photos"),
 		MAIL_FROM: "Four Rivers Fruit Network <survey@fourrivers.example>",
 		...(codeVersion() && { CODE_VERSION: codeVersion() }),
 	};

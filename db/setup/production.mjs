@@ -1,5 +1,7 @@
 // What NODE_ENV=production asks for: nothing that is made for trying the product out.
 import { isIP } from "node:net";
+import { isAbsolute, join, relative, resolve } from "node:path";
+import { root } from "./local.mjs";
 
 const needed = [
 	"BASE_URL",
@@ -12,6 +14,7 @@ const needed = [
 	"OAUTH_ISSUER",
 	"OAUTH_CLIENT_ID",
 	"OAUTH_CLIENT_SECRET",
+	"PHOTO_DIR",
 ];
 
 function parse(text) {
@@ -51,6 +54,13 @@ function sessionProblem(text) {
 	return secretProblem(text);
 }
 
+/** Photos are shown to those who may see them and to nobody else, so they lie nowhere that is served as it stands. */
+function folderProblem(text) {
+	if (!isAbsolute(text)) return "must be a whole path, beginning with /";
+	const served = ["public", "build"].map((name) => relative(join(root, name), resolve(text)));
+	return served.some((path) => !path.startsWith("..")) ? "lies in a folder that is served to everybody" : undefined;
+}
+
 /** The reader's wall stands only when it comes in as another role. */
 function roleProblems(given) {
 	const roleOf = (name) => parse(given[name] ?? "")?.username;
@@ -71,6 +81,7 @@ export function productionProblems(given) {
 		OAUTH_ISSUER: addressProblem,
 		SESSION_SECRET: sessionProblem,
 		OAUTH_CLIENT_SECRET: secretProblem,
+		PHOTO_DIR: folderProblem,
 	};
 	const refused = Object.entries(checks).flatMap(([name, check]) => {
 		const problem = given[name] && check(given[name]);

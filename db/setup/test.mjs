@@ -28,6 +28,7 @@ const kept = ([name]) =>
 		"NODE_ENV",
 		"CODE_VERSION",
 		"COORDINATOR_SUBJECT",
+		"PHOTO_DIR",
 	].includes(name);
 const cleanEnvironment = Object.fromEntries(Object.entries(process.env).filter(kept));
 

@@ -59,11 +59,13 @@ const typed: Record<ReadyFormKey, (i: number) => [string, StepValues][]> = {
 		["night", { coldest_day: "2031-05-04", coldest: "-2,5", coldest_unit: "celsius", hours_below: "4" }],
 		["planting-", { stage: "full_bloom", buds_cut: "50", buds_dead: String(5 * i) }],
 		["protection", { protection: i < 2 ? ["water", "fans"] : "none" }],
+		["photos", {}],
 		["note", { comment: "Cold air lay in the low rows." }],
 	],
 	pests: (i) => [
 		["planting-", { seen: i % 2 ? ["japanese_beetle"] : "none" }],
 		["japanese_beetle-", pest("japanese_beetle", "20%", "moderate", "marked")],
+		["photos", {}],
 		["note", {}],
 	],
 	after_harvest: (i) => [
@@ -159,6 +161,7 @@ test("a pest is asked about where it was seen, and nowhere else", async () => {
 		"planting",
 		"japanese_beetle",
 		"japanese_beetle",
+		"photos",
 		"note",
 	]);
 	const place = { surveyId, operationId: operationIds[1]! };

@@ -1,4 +1,7 @@
 import { type ChildProcess, spawn } from "node:child_process";
+import { mkdtemp, rm } from "node:fs/promises";
+import { tmpdir } from "node:os";
+import path from "node:path";
 import { setTimeout as pause } from "node:timers/promises";
 import { freePort } from "#db/setup/ports.mjs";
 import { createTestDatabase } from "#tests/helpers/database.ts";
@@ -6,6 +9,8 @@ import { createTestDatabase } from "#tests/helpers/database.ts";
 export type Stack = AsyncDisposable & {
 	baseUrl: string;
 	inboxUrl: string;
+	/** Where the files of photos lie. */
+	photoFolder: string;
 	database: Awaited<ReturnType<typeof createTestDatabase>>;
 	/** What the server, the worker and the fakes have said so far, for a failing test to show. */
 	output: () => string;
@@ -30,6 +35,7 @@ export async function startStack(
 	options: { seed?: "none" | "demo"; coordinatorSubject?: string } = {},
 ): Promise<Stack> {
 	const database = await createTestDatabase({ seed: options.seed ?? "none" });
+	const photoFolder = await mkdtemp(path.join(tmpdir(), "tallygrove-photos-"));
 	const [port, mailPort, inboxPort, signInPort] = await Promise.all([freePort(), freePort(), freePort(), freePort()]);
 	const baseUrl = `http://localhost:${port}`;
 	const inboxUrl = `http://127.0.0.1:${inboxPort}`;
@@ -48,6 +54,7 @@ export async function startStack(
 		OAUTH_ISSUER: issuer,
 		OAUTH_CLIENT_ID: "tallygrove",
 		OAUTH_CLIENT_SECRET: "only-for-tests-client",
+		PHOTO_DIR: photoFolder,
 		LOG_LEVEL: "warn",
 		...(options.coordinatorSubject && { COORDINATOR_SUBJECT: options.coordinatorSubject }),
 	};
@@ -89,12 +96,14 @@ export async function startStack(
 		baseUrl,
 		inboxUrl,
 		database,
+		photoFolder,
 		output: () => said.slice(-200).join("\n"),
 		kill,
 		start,
 		async [Symbol.asyncDispose]() {
 			for (const name of children.keys()) await kill(name);
 			await database[Symbol.asyncDispose]();
+			await rm(photoFolder, { recursive: true, force: true });
 		},
 	};
 }

@@ -36,6 +36,7 @@ const guarded: Record<string, Guarded> = {
 	"collect.response": { key: "operation_id", state: "state_fips", desk: write, grower: write },
 	"collect.answer": { key: "response_id", desk: all, grower: all },
 	"collect.submission": { key: "response_id", desk: ["insert"], grower: ["insert"] },
+	"collect.photo": { key: "response_id", desk: ["insert", "delete"], grower: ["insert", "delete"] },
 	"collect.fact": { key: "operation_id", state: "state_fips", desk: all, grower: all },
 	"collect.tally": { key: "measure_key", state: "state_fips", desk: all, grower: "nothing", deskReads: true },
 	// A draft covers the network and holds figures of shown cells alone: every desk's, and no grower's.

@@ -82,6 +82,11 @@ async function addHolder(owner: Client, surveyId: string, draftId: string, state
 	await owner.query("insert into collect.submission (response_id, version, answers) values ($1, 1, '{}')", [
 		responseId,
 	]);
+	await owner.query(
+		`insert into collect.photo (photo_id, response_id, question_key, file_name, width_px, height_px, size_bytes)
+		values (gen_random_uuid(), $1::uuid, 'photos', md5($1::uuid::text), 1600, 1200, 400000)`,
+		[responseId],
+	);
 	return {
 		operation_id: operationId,
 		owner_id: ownerId,

@@ -1,6 +1,7 @@
 import type { FormDefinition, Measure, Screen } from "#app/collect/form.ts";
 import { knownTrees, knownTreesBase } from "./known-trees.ts";
 import { noteQuestion } from "./note.ts";
+import { photoScreen } from "./photos.ts";
 
 const night: Screen = {
 	key: "night",
@@ -181,6 +182,7 @@ export const afterFreeze: FormDefinition = {
 		night,
 		buds,
 		protection,
+		photoScreen({ en: "Photos of the damage", es: "Fotos del daño" }),
 		{ key: "note", title: { en: "A last word", es: "Algo más" }, perPlanting: false, questions: [noteQuestion] },
 	],
 	measures: [

@@ -1,6 +1,7 @@
 import type { Condition, FormDefinition, Measure, Screen } from "#app/collect/form.ts";
 import { knownTrees, knownTreesBase } from "./known-trees.ts";
 import { noteQuestion } from "./note.ts";
+import { photoScreen } from "./photos.ts";
 import { type Pest, pests as list } from "./pest-list.ts";
 
 const isSeen = ({ key }: Pest): Condition => ({ compare: "=", question: "seen", to: { value: key } });
@@ -178,6 +179,13 @@ export const pests: FormDefinition = {
 	screens: [
 		seen,
 		...list.map(pestScreen),
+		photoScreen(
+			{ en: "Photos of the pest or disease", es: "Fotos de la plaga o enfermedad" },
+			{
+				condition: { any_planting: { compare: "!=", question: "seen", to: { value: "none" } } },
+				whenUnsure: "skip",
+			},
+		),
 		{ key: "note", title: { en: "A last word", es: "Algo más" }, perPlanting: false, questions: [noteQuestion] },
 	],
 	measures: [...list.flatMap(measuresOf), knownTreesBase],

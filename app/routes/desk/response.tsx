@@ -71,7 +71,13 @@ export default function ResponsePage({ loaderData: response, params }: Route.Com
 						<NothingSent response={response} />
 					</div>
 				) : (
-					<AnswerList groups={response.groups} level={3} />
+					<AnswerList
+						groups={response.groups}
+						level={3}
+						photoHref={(photoId) =>
+							href("/desk/surveys/:surveyId/responses/:responseId/photos/:photoId", { ...params, photoId })
+						}
+					/>
 				)}
 			</Section>
 		</>

@@ -63,7 +63,13 @@ export default function OwnAnswers({ loaderData: answers, params }: Route.Compon
 				</div>
 			)}
 			<Section title={t("answers.yours")}>
-				<AnswerList groups={answers.groups} level={3} />
+				<AnswerList
+					groups={answers.groups}
+					level={3}
+					photoHref={(photoId) =>
+						href("/orchard/:operationId/answers/:surveyId/photos/:photoId", { ...params, photoId })
+					}
+				/>
 			</Section>
 			{answers.withdrawal && <Withdrawal possible={answers.withdrawal === "possible"} />}
 		</Page>

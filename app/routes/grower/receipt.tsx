@@ -10,6 +10,7 @@ import { Section } from "#app/components/section.tsx";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { getAnswering } from "./parts/answering.server.ts";
+import { photoAddress } from "./parts/photo-address.ts";
 import { PhonePart } from "./parts/phone-part.tsx";
 import { phonePart } from "./parts/phone.server.ts";
 
@@ -60,7 +61,7 @@ export default function Receipt({ loaderData, params }: Route.ComponentProps) {
 						{t("receipt.change")}
 					</ButtonLink>
 				</div>
-				<AnswerList groups={groups} />
+				<AnswerList groups={groups} photoHref={photoAddress(params)} />
 			</Section>
 			<PhonePart {...loaderData.phone} stage="receipt" />
 		</Page>

@@ -2,18 +2,18 @@ import { data, href, redirect } from "react-router";
 import type { Route } from "./+types/screen";
 import { requireGrower } from "#app/auth/guard.server.ts";
 import { listDifferences } from "#app/collect/answer-lines.ts";
-import { listChecksToAsk } from "#app/collect/checks-to-ask.ts";
 import { keepStep } from "#app/collect/keep-step.server.ts";
 import { type PostedStep, readPostedStep } from "#app/collect/posted-step.ts";
 import { postedText, type StepValues } from "#app/collect/posted.ts";
 import type { Answering } from "#app/collect/responses.server.ts";
 import { showStep } from "#app/collect/show-step.ts";
 import { changeOf, judgeChange, type SentChange, unsureNow, versionOf } from "#app/collect/step-change.ts";
-import { listSteps } from "#app/collect/steps.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { getAnswering, todayIn } from "./parts/answering.server.ts";
+import { nextAddress } from "./parts/next-address.server.ts";
 import { phonePart } from "./parts/phone.server.ts";
+import { holdsFiles, takePhotoScreen } from "./parts/photo-screen.server.ts";
 import { readPosted } from "./parts/posted.server.ts";
 import { ScreenView } from "./parts/screen-view.tsx";
 
@@ -32,6 +32,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const grower = requireGrower(context, params);
+	if (holdsFiles(request)) return takePhotoScreen({ context, params, request });
 	const { values, sent } = await readPosted(request);
 	const answering = await getAnswering(context, params);
 	const posted = readPostedStep(answering, params.screen, values, {
@@ -69,24 +70,6 @@ function showBoth(answering: Answering, { step, questions, answers, problems }: 
 	const elsewhere = listDifferences(answering, step.key, answers, unread);
 	const seen = versionOf(answering.response?.stepChanges ?? {}, step.key);
 	return data({ values, questions, problems: [], seen, unsure: [], elsewhere }, { status: 409 });
-}
-
-/** The same step while its answers are to be confirmed, else the next one, or the review where somebody came from there. */
-async function nextAddress(
-	context: Route.ActionArgs["context"],
-	params: Route.ActionArgs["params"],
-	request: Request,
-): Promise<string> {
-	const { search, searchParams } = new URL(request.url);
-	const answering = await getAnswering(context, params);
-	const again = href("/answer/:surveyId/:operationId/ask/:screen", params) + search;
-	if (listChecksToAsk(answering, params.screen).length > 0) return again;
-	const review = href("/answer/:surveyId/:operationId/review", params);
-	if (searchParams.has("review")) return review;
-	const { definition, plantings, answers } = answering;
-	const steps = listSteps(definition, plantings, answers);
-	const next = steps[steps.findIndex(({ key }) => key === params.screen) + 1];
-	return next ? href("/answer/:surveyId/:operationId/ask/:screen", { ...params, screen: next.key }) : review;
 }
 
 export default function ScreenPage({ loaderData, actionData, params }: Route.ComponentProps) {

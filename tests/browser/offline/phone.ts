@@ -46,7 +46,7 @@ export function heldByPhone(page: Page): Promise<[number, number]> {
 		// oxlint-disable-next-line unicorn/consistent-function-scoping -- runs in the browser, which has nothing of this file
 		const answer = <T>(request: IDBRequest<T>) =>
 			new Promise<T>((resolve) => request.addEventListener("success", () => resolve(request.result)));
-		const database = await answer(indexedDB.open("tallygrove-answers", 1));
+		const database = await answer(indexedDB.open("tallygrove-answers"));
 		const count = (store: string) => answer(database.transaction(store).objectStore(store).count());
 		const counts: [number, number] = [await count("held"), await count("packs")];
 		database.close();

@@ -125,6 +125,11 @@ export const exceptions: { from: string; to: string; because: string }[] = [
 		because: "a reminder's alarm is set and moved in the transaction that sets its time",
 	},
 	{
+		from: "app/collect/photo-rows.server.ts",
+		to: "app/jobs/queue.server.ts",
+		because: "files of photos are erased when the transaction that takes them away has ended well, and only then",
+	},
+	{
 		from: "app/collect/submission.server.ts",
 		to: "app/tally/facts.server.ts",
 		because: "a submission writes its facts in its own transaction: neither is ever there without the other",

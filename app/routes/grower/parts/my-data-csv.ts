@@ -30,11 +30,12 @@ function rowsOf(operation: Operation): Row[] {
 		...(pin ? facts("pin", "", pin) : []),
 		...plantings.flatMap(({ planting_id, ...planting }) => facts("planting", planting_id, planting)),
 		...surveys.flatMap((survey) => {
-			const { answers_now, submissions, mails, survey_id: surveyId, title, ...facing } = survey;
+			const { answers_now, submissions, mails, photos, survey_id: surveyId, title, ...facing } = survey;
 			return [
 				...facts("survey", surveyId, { title_en: title.en, title_es: title.es, ...facing }),
 				...answers_now.map((answer) => answerRow("answer_now", surveyId, answer, null)),
 				...submissions.flatMap((sent) => sentRows(surveyId, sent)),
+				...photos.map(({ photo_id, file, added_at }): Row => ["photo", surveyId, photo_id, file, "", added_at]),
 				...mails.map((mail): Row => [
 					"mail",
 					surveyId,

@@ -10,6 +10,7 @@ import { TextField } from "#app/components/text-field.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import { CrateBox } from "./crate-box.tsx";
+import { PhotoField } from "./photo-field.tsx";
 import { UnknownBoxes } from "./unknown-boxes.tsx";
 
 type QuestionFieldProps = {
@@ -21,6 +22,8 @@ type QuestionFieldProps = {
 	mayNotKnow: boolean;
 	/** From where the box is filled in, as long as nobody has answered. */
 	filledFrom?: FilledFrom;
+	/** Where a photo of the survey is. */
+	photoHref: (photoId: string) => string;
 };
 
 /** What a question is called in a sentence about it. */
@@ -36,8 +39,11 @@ export function QuestionField(props: QuestionFieldProps) {
 		case "rating":
 		case "several":
 			return <OptionsField {...props} question={question} />;
-		case "photo":
-			return null;
+		case "photo": {
+			const { values, problems, photoHref } = props;
+			const photoIds = [values[question.key] ?? []].flat();
+			return <PhotoField question={question} photoIds={photoIds} problems={problems} hrefOf={photoHref} />;
+		}
 		default:
 			return <BoxField {...props} question={question} />;
 	}

@@ -10,6 +10,7 @@ import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { KeptWord, PhonePart, type PhonePage } from "./phone-part.tsx";
+import { photoAddress } from "./photo-address.ts";
 import { useStepTitle } from "#app/components/step-title.ts";
 
 type Titled = { key: string; screen: { title: Words }; planting: PlantingAsked | null };
@@ -41,7 +42,7 @@ export function ReviewView({ groups, steps, refused, place, phone, ...rest }: Re
 			{refused && <Unfinished steps={steps} {...refused} addressOf={askAddress} />}
 			{sent && !changed && <Notice tone="info">{t("review.alreadySent")}</Notice>}
 			{sent && changed && <Notice tone="attention">{t("review.changedNotSent")}</Notice>}
-			<AnswerList groups={groups} editHref={askAddress} />
+			<AnswerList groups={groups} editHref={askAddress} photoHref={photoAddress(place)} />
 			<Form method="post" className="mt-8" data-answering="">
 				<p className="mb-4">{t("review.until", { closes: format.moment(closesAt, timeZone) })}</p>
 				<Button busy={busy} data-on="">

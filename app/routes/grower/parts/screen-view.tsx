@@ -15,6 +15,7 @@ import type { Problem } from "#app/lib/parse-form.ts";
 import { ChangedElsewhere } from "./changed-elsewhere.tsx";
 import { CheckNotice } from "./check-notice.tsx";
 import { KeptWord, PhonePart, type PhonePage } from "./phone-part.tsx";
+import { photoAddress } from "./photo-address.ts";
 import { labelOf, QuestionField } from "./question-field.tsx";
 import { useStepTitle } from "#app/components/step-title.ts";
 import { ScreenUnknown } from "./unknown-boxes.tsx";
@@ -65,7 +66,14 @@ export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
 			</div>
 			<ErrorSummary problems={problems} labels={labels} />
 			{/* A screen of its own: boxes of one step must not carry their text into the next. */}
-			<Form key={step.key} method="post" noValidate data-answering="" data-both={elsewhere ? "" : undefined}>
+			<Form
+				key={step.key}
+				method="post"
+				encType={questions.some(({ type }) => type === "photo") ? "multipart/form-data" : undefined}
+				noValidate
+				data-answering=""
+				data-both={elsewhere ? "" : undefined}
+			>
 				<input type="hidden" name="_seen" value={posted?.seen ?? shown.version} />
 				{posted?.unsure.map((name) => (
 					<input key={name} type="hidden" name="_unsure" value={name} />
@@ -81,6 +89,7 @@ export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
 						mayNotKnow={!shared.has(question.key)}
 						problems={problems}
 						filledFrom={posted ? undefined : shown.filledIn[question.key]}
+						photoHref={photoAddress(place)}
 					/>
 				))}
 				{shared.size > 0 && <ScreenUnknown values={values} />}

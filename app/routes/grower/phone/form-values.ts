@@ -18,7 +18,7 @@ export function valuesOf(posted: FormData): StepValues {
 /** Puts values back into the boxes of a screen. */
 export function fill(form: HTMLFormElement, values: StepValues): void {
 	for (const box of form.elements) {
-		if (!isBox(box) || box.name === "" || box.name.startsWith("_")) continue;
+		if (!isBox(box) || box.name === "" || box.name.startsWith("_") || box.type === "file") continue;
 		const texts = [values[box.name] ?? []].flat();
 		if (box instanceof HTMLInputElement && (box.type === "checkbox" || box.type === "radio"))
 			box.checked = texts.includes(box.value);

@@ -1,4 +1,4 @@
-import { askToSendIn, listUnsettled, settle } from "#app/collect/outbox.ts";
+import { askToSendIn, emptyOutbox, listUnsettled, settle } from "#app/collect/outbox.ts";
 import { listenForLeaving } from "./ask-leaving.ts";
 import { startAskPage } from "./ask-page.ts";
 import { keepPack } from "./pack.ts";
@@ -7,7 +7,8 @@ import { startRefusedPage } from "./refused-page.ts";
 import { startReviewPage } from "./review-page.ts";
 import { isReadyToSendIn, reviewOf } from "./send-in.ts";
 import { change, sendWaiting } from "./send.ts";
-import { openStore, type PhoneStore } from "./store.ts";
+import { sendPhotos } from "./send-photos.ts";
+import { type Held, openStore, type PhoneStore } from "./store.ts";
 
 /*
  * The script of a grower's pages, which work without it: it keeps what is typed, on the phone and at the server, and says so.
@@ -29,21 +30,30 @@ async function start(): Promise<void> {
 	if (page.responseId === null || page.told === null) return;
 	const begun = { ...page, responseId: page.responseId, told: page.told };
 	if (page.stage === "receipt") {
-		// All is at the server and in the receipt; the phone keeps no copy.
-		await store.change(begun.responseId, () => undefined);
+		// All is at the server and in the receipt; the phone keeps no copy, but of a photo that came too late for it.
+		await store.change(begun.responseId, withPhotosOnly);
 		await store.dropPack(begun.responseId);
 		return;
 	}
 	await startStage(store, begun);
 	window.setTimeout(() => void prepareForNoSignal(store, page), 500);
+	window.addEventListener("online", () => void sendPhotos(store, begun.responseId, () => {}));
 	await sendInWhereAsked(store, begun.responseId);
+}
+
+function withPhotosOnly(held: Held | undefined): Held | undefined {
+	const photos = held?.outbox.photos ?? [];
+	return held && photos.length > 0 ? { ...held, outbox: { ...emptyOutbox, photos } } : undefined;
 }
 
 async function startStage(store: PhoneStore, page: BegunPage): Promise<void> {
 	const form = document.querySelector<HTMLFormElement>("form[data-answering]");
 	const { stepKey } = page;
 	if (page.stage === "ask" && form && stepKey !== undefined) {
-		listenForLeaving(await startAskPage(store, { ...page, stepKey }, form));
+		const ask = await startAskPage(store, { ...page, stepKey }, form);
+		listenForLeaving(ask);
+		if (form.querySelector("input[type=file]"))
+			await import("./photos/photo-page.ts").then(({ startPhotoPage }) => startPhotoPage(ask));
 		goOnWhereAsked(form);
 	} else if (page.stage === "review" && form) {
 		await startReviewPage(store, page, form);
@@ -56,6 +66,7 @@ async function startStage(store: PhoneStore, page: BegunPage): Promise<void> {
 /** What was sent in without signal is sent in now, by the page that can say what is missing. */
 async function sendInWhereAsked(store: PhoneStore, responseId: string): Promise<void> {
 	await sendWaiting(store, responseId, () => {});
+	await sendPhotos(store, responseId, () => {});
 	const held = await store.read(responseId);
 	if (!isReadyToSendIn(held)) return;
 	await change(store, responseId, (outbox) => askToSendIn(outbox, false));

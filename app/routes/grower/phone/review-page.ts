@@ -1,20 +1,22 @@
 import { listUnsettled, nextToSend, settle } from "#app/collect/outbox.ts";
+import { nextPhoto } from "#app/collect/photos-here.ts";
 import { versionOf } from "#app/collect/step-change.ts";
 import type { BegunPage } from "./page-data.ts";
 import { change, sendWaiting } from "./send.ts";
+import { sendPhotos } from "./send-photos.ts";
 import type { Held, PhoneStore } from "./store.ts";
 
 /** The page shows what the server has: what the phone still holds is sent first, and named where it cannot be. */
 export async function startReviewPage(store: PhoneStore, page: BegunPage, form: HTMLFormElement): Promise<void> {
 	const held = await change(store, page.responseId, (outbox) => settle(outbox, page.told.changes));
 	const hadMore = held !== undefined && nextToSend(held.outbox) !== undefined;
+	const hadPhotos = held !== undefined && nextPhoto(held.outbox) !== undefined;
 	form.addEventListener("submit", (event) => void sendIn(store, page, event));
-	if (!hadMore) {
-		await sayUnsettled(store, page);
-		return;
-	}
-	const outcome = await sendWaiting(store, page.responseId, () => {});
-	if (outcome === "sent" && hasNews(await store.read(page.responseId), page)) location.reload();
+	const outcome = hadMore ? await sendWaiting(store, page.responseId, () => {}) : null;
+	await sayUnsettled(store, page);
+	const photos = hadPhotos ? await sendPhotos(store, page.responseId, () => {}) : null;
+	const hasTyped = outcome === "sent" && hasNews(await store.read(page.responseId), page);
+	if (hasTyped || photos === "sent") location.reload();
 	else await sayUnsettled(store, page);
 }
 
@@ -30,6 +32,8 @@ async function sendIn(store: PhoneStore, page: BegunPage, event: SubmitEvent): P
 	if (submitter?.getAttribute("aria-disabled") === "true") return;
 	submitter?.setAttribute("aria-disabled", "true");
 	await sendWaiting(store, page.responseId, () => {});
+	await sayUnsettled(store, page);
+	await sendPhotos(store, page.responseId, () => {});
 	if (await sayUnsettled(store, page)) submitter?.removeAttribute("aria-disabled");
 	else (target as HTMLFormElement).submit();
 }

@@ -55,6 +55,14 @@ async function post(
 		case 409:
 			// A hotel's sign-in page, too, answers 200.
 			return readAnswer(await response.json().catch(() => null)) ?? "no_signal";
+		default:
+			return whyNot(response);
+	}
+}
+
+/** Why the server did not take what was sent. "refused": it never will. */
+export async function whyNot(response: Response | null | undefined): Promise<"refused" | Exclude<Sending, "sent">> {
+	switch (response?.status) {
 		case 401:
 			return "session_over";
 		case 404:

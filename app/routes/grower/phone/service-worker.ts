@@ -1,7 +1,9 @@
 import { nextToSend } from "#app/collect/outbox.ts";
+import { nextPhoto } from "#app/collect/photos-here.ts";
 import { placeIn } from "./place.ts";
 import { sendWaiting } from "./send.ts";
 import { sendIn } from "./send-in.ts";
+import { sendPhotos } from "./send-photos.ts";
 import { openStore } from "./store.ts";
 
 /*
@@ -30,7 +32,8 @@ worker.addEventListener("fetch", (event) => {
 	const { request } = event;
 	const { pathname, origin } = new URL(request.url);
 	if (origin !== location.origin) return;
-	if (request.mode === "navigate" && placeIn(pathname)) event.respondWith(answerPage(request));
+	if (request.mode === "navigate" && placeIn(pathname) && !pathname.includes("/photos/"))
+		event.respondWith(answerPage(request));
 	else if (pathname.startsWith("/assets/")) event.respondWith(answerAsset(request));
 });
 
@@ -75,8 +78,9 @@ async function sendAll(): Promise<void> {
 	const store = await openStore();
 	for (const { responseId } of await store.list()) {
 		await sendWaiting(store, responseId, () => {});
+		await sendPhotos(store, responseId, () => {});
 		await sendIn(store, responseId);
 		const held = await store.read(responseId);
-		if (held && nextToSend(held.outbox) !== undefined) throw new Error("not all was sent");
+		if (held && (nextToSend(held.outbox) ?? nextPhoto(held.outbox))) throw new Error("not all was sent");
 	}
 }

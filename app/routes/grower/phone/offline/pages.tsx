@@ -10,6 +10,7 @@ import { ReviewView } from "../../parts/review-view.tsx";
 import { ScreenView } from "../../parts/screen-view.tsx";
 import { startAskPage } from "../ask-page.ts";
 import { readPage } from "../page-data.ts";
+import { startPhotoPage } from "../photos/photo-page.ts";
 import { here } from "./here.ts";
 import * as loaders from "./loaders.ts";
 
@@ -72,7 +73,9 @@ function keepScreen(stepKey: string): () => void {
 	if (page?.stepKey === stepKey && page.responseId !== null && page.told !== null && form) {
 		const { responseId, told } = page;
 		void startAskPage(here.store, { ...page, stepKey, responseId, told }, form, ending.signal).then((ask) => {
-			if (!ending.signal.aborted) here.ask = ask;
+			if (ending.signal.aborted) return;
+			here.ask = ask;
+			if (form.querySelector("input[type=file]")) void startPhotoPage(ask);
 		});
 	}
 	return () => {

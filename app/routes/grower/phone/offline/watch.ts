@@ -1,4 +1,6 @@
 import { isReadyToSendIn, reviewOf } from "../send-in.ts";
+import { askToSendLater } from "../send-later.ts";
+import { sendPhotos } from "../send-photos.ts";
 import { sendWaiting } from "../send.ts";
 import type { Pack } from "../pack.ts";
 import { here } from "./here.ts";
@@ -19,15 +21,12 @@ export function watchForSignal(pack: Pack): void {
 		here.reachable = answer?.ok ?? false;
 		if (!here.reachable) return;
 		await sendWaiting(here.store, pack.responseId, () => {});
+		await sendPhotos(here.store, pack.responseId, () => {});
 		const held = await here.store.read(pack.responseId);
 		if (isReadyToSendIn(held)) location.replace(reviewOf(held));
 	};
 	window.addEventListener("online", () => void look());
 	window.addEventListener("offline", () => void look());
 	window.setInterval(() => void look(), pause);
-	const { serviceWorker } = navigator;
-	// Where the browser can, it sends when signal is back though no page is open.
-	void serviceWorker?.ready.then((registration) =>
-		(registration as { sync?: { register(tag: string): Promise<void> } }).sync?.register("answers").catch(() => {}),
-	);
+	askToSendLater();
 }
