@@ -41,22 +41,26 @@ export async function findOwnFacts(trx: Trx, viewer: Grower, surveyId: string) {
 	};
 }
 
-/** A total says nothing beside that of a whole county, so it is left out; so are quantities that no release tells. */
+/**
+ * A total says nothing beside that of a whole county, so it is left out; so are days, which no release tells yet, and
+ * quantities that are made for protection alone.
+ */
 async function listFigures(trx: Trx, surveyId: string, operationId: string, measures: Measure[]) {
 	const facts = await trx
 		.selectFrom("collect.fact")
 		.select(["measure_key", "crop_key", "y", "x"])
 		.where("survey_id", "=", surveyId)
 		.where("operation_id", "=", operationId)
+		.where("crop_key", "!=", "all")
 		.execute();
 	return measures
-		.filter(({ kind, base }) => kind !== "total" && !base)
+		.filter(({ kind, base }) => kind !== "total" && kind !== "day" && !base)
 		.flatMap(({ key, kind, scale }) =>
-			facts
-				.filter((fact) => fact.measure_key === key && fact.crop_key !== "all" && fact.x !== 0)
-				.map(({ crop_key, y, x }): OwnFigure => {
-					return { measureKey: key, cropKey: crop_key, kind, value: (y / x) * scale };
-				}),
+			facts.flatMap(({ measure_key, crop_key, y, x }): OwnFigure[] =>
+				measure_key !== key || y === null || !x
+					? []
+					: [{ measureKey: key, cropKey: crop_key, kind, value: (y / x) * scale }],
+			),
 		);
 }
 

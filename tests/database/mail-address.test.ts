@@ -24,6 +24,9 @@ afterAll(async () => {
 	await database.drop();
 });
 
+const mend = (operationId: string, email: string | null) =>
+	asDesk(iowa, (trx) => mendAddress(trx, iowa, operationId, email));
+
 test("an address mended at the desk is invited again, and the log says by whom and not to what", async () => {
 	const { mailingId, surveyId, operationId } = await inviteGrower(owner, iowa);
 	await owner.query("update collect.mailing set failed_at = now(), failure = 'returned' where mailing_id = $1", [
@@ -48,8 +51,6 @@ test("an address in another state, or of who has left, is not found; the same on
 	const elsewhere = await addOperation(owner, { state: "55" });
 	const left = await addOperation(owner, { state: "19", status: "left" });
 	const mine = await addOperation(owner, { state: "19" });
-	const mend = (operationId: string, email: string | null) =>
-		asDesk(iowa, (trx) => mendAddress(trx, iowa, operationId, email));
 	expect(await mend(elsewhere, "spy@elsewhere.example")).toBe("not_found");
 	expect(await mend(left, "spy@elsewhere.example")).toBe("not_found");
 	expect(await mend(mine, "ada@quailbend.example")).toBe("unchanged");
