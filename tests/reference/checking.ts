@@ -6,8 +6,8 @@ import type { Checker, CheckResult } from "#tests/reference/verify/checker.ts";
 /** One expected value beside ours. `scale` is what an expected 0 is judged against, such as the estimate of its error. */
 export type Comparison = { at: string; expected: unknown; actual: unknown; tolerance?: number; scale?: number };
 
-/** What became of one file: every comparison made, and how many of its values nothing of ours computes. */
-export type Checked = { comparisons: Comparison[]; notCovered: number };
+/** What became of one file: every comparison made, how many of its values nothing of ours computes, and a remark. */
+export type Checked = { comparisons: Comparison[]; notCovered: number; note?: string };
 
 export type Outcome = Comparison & { error: number; passed: boolean };
 
@@ -37,12 +37,19 @@ export function comparing(file: RegExp, compare: (folder: string, file: string) 
 	return { file, check: async (path, folder) => resultOf(await compare(folder, basename(path))) };
 }
 
-export function resultOf({ comparisons, notCovered }: Checked): CheckResult | "not_covered" {
+export function resultOf({ comparisons, notCovered, note }: Checked): CheckResult | "not_covered" {
 	if (comparisons.length === 0) return "not_covered";
 	const outcomes = comparisons.map(judge);
 	const failures = outcomes.filter(({ passed }) => !passed).map(describe);
 	const largestRelativeError = outcomes.reduce((largest, { error }) => Math.max(largest, error), 0);
-	return { values: outcomes.length, largestRelativeError, passed: failures.length === 0, notCovered, failures };
+	return {
+		values: outcomes.length,
+		largestRelativeError,
+		passed: failures.length === 0,
+		notCovered,
+		failures,
+		...(note && { note }),
+	};
 }
 
 function describe({ at, expected, actual, error }: Outcome): string {

@@ -15,6 +15,7 @@ import {
 	checkRobustScores,
 	checkUnitSlips,
 } from "#tests/reference/estimation/review.ts";
+import { checkSimulation } from "#tests/reference/estimation/simulation.ts";
 import { checkSeasons } from "#tests/reference/estimation/seasons.ts";
 import {
 	checkSyntheticDomains,
@@ -32,6 +33,7 @@ export const checkers: Checker[] = [
 	comparing(/^synthetic_domains_expected\.csv$/, checkSyntheticDomains),
 	comparing(/^synthetic_expected\.json$/, checkSyntheticFigures),
 	comparing(/^change_expected\.csv$/, checkChange),
+	comparing(/^change_montecarlo\.json$/, checkSimulation),
 	comparing(/^change_mean5_expected\.json$/, checkSeasons),
 	comparing(/^allocation_expected\.csv$/, checkAllocation),
 	comparing(/^review_hb_effects\.csv$/, checkRatioEffects),
