@@ -1,0 +1,35 @@
+// npm run bench: measures on a throw-away cluster, or on the one that TEST_... addresses name. JSON lines on stdout.
+import { startCluster, stopCluster } from "./cluster.mjs";
+import { atEnd, end, endOnSignals } from "./end.mjs";
+import { makeLocal } from "./local.mjs";
+import { checkNode, ensurePackages } from "./packages.mjs";
+import { databaseUrl, ensureRoles, roles } from "./roles.mjs";
+import { run } from "./run.mjs";
+import { tell } from "./steps.mjs";
+
+async function addresses() {
+	if (process.env.TEST_DATABASE_ADMIN_URL) return {};
+	const cluster = await startCluster({ name: "bench", throwaway: true });
+	atEnd(() => stopCluster(cluster));
+	await ensureRoles(cluster);
+	return {
+		TEST_DATABASE_ADMIN_URL: databaseUrl(cluster, "admin", "postgres"),
+		...Object.fromEntries(
+			Object.keys(roles).map((key) => [`TEST_${key.toUpperCase()}_URL`, databaseUrl(cluster, key, "postgres")]),
+		),
+	};
+}
+
+try {
+	endOnSignals();
+	checkNode();
+	makeLocal();
+	await ensurePackages();
+	const env = { ...process.env, ...(await addresses()) };
+	const args = ["--import", "tsx", "tests/bench/bench.ts", ...process.argv.slice(2)];
+	const { code } = await run(process.execPath, args, { env, streams: true, mayFail: true });
+	await end(code);
+} catch (error) {
+	tell(error);
+	await end(1);
+}

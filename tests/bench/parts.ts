@@ -1,0 +1,6 @@
+import type { Part } from "./line.ts";
+import { submission } from "./submission.ts";
+import { tally } from "./tally.ts";
+
+/** What can be measured, by the name to ask for it with. A new part is a file beside this one and a line here. */
+export const parts: Record<string, Part> = { tally, submission };
