@@ -1,4 +1,6 @@
+import * as fc from "fast-check";
 import { describe, expect, test } from "vitest";
+import { logitInterval } from "#app/estimate/interval.ts";
 import { quantileEstimate } from "#app/estimate/quantile.ts";
 
 /** A stratum of four times as many operations as answered, one answer for each day given. */
@@ -32,7 +34,42 @@ describe("a weighted quantile", () => {
 	test("one answer has a value and no interval; none has neither", () => {
 		const one = quantileEstimate([stratum([110], 5)], 0.5);
 		expect(one).toMatchObject({ value: 110, lower: null, upper: null, standardError: null, respondents: 1 });
+		// Degrees of freedom from the whole design must not lend a lone answer a precision.
+		expect(quantileEstimate([stratum([110], 5)], 0.5, { df: 4 })).toMatchObject({ lower: null, standardError: null });
 		expect(quantileEstimate([stratum([], 5)], 0.5)).toBeNull();
 		expect(() => quantileEstimate([stratum([110, 111])], 1)).toThrow(RangeError);
+	});
+
+	test("a full count has the quantile for certain", () => {
+		const everybody = { ...stratum([110, 112, 118, 121]), weight: 1, samplingFraction: 1 };
+		expect(quantileEstimate([everybody], 0.5)).toMatchObject({ value: 112, lower: 112, upper: 112, standardError: 0 });
+	});
+
+	test("an interval of the share on the logit scale keeps its ends where by t they are missing", () => {
+		const few = [stratum([110, 112, 118, 121])];
+		expect(quantileEstimate(few, 0.5)).toMatchObject({ lower: null, upper: null });
+		expect(quantileEstimate(few, 0.5, { interval: logitInterval })).toMatchObject({ lower: 110, upper: 121 });
+	});
+
+	test("it lies within its answers, and counts in one histogram or in many give the same", () => {
+		const day = fc.integer({ min: 60, max: 200 });
+		fc.assert(
+			fc.property(
+				fc.array(day, { minLength: 2, maxLength: 30 }),
+				fc.double({ min: 0.01, max: 0.99, noNaN: true }),
+				(days, p) => {
+					const one = stratum(days);
+					const counts = [...new Set(days)].map((value) => ({
+						value,
+						n: days.filter((each) => each === value).length,
+					}));
+					const [ours, merged] = [quantileEstimate([one], p), quantileEstimate([{ ...one, counts }], p)];
+					expect(merged).toEqual(ours);
+					expect(days).toContain(ours!.value);
+					const later = stratum(days.map((each) => each + 7));
+					expect(quantileEstimate([later], p)?.value).toBe(ours!.value + 7);
+				},
+			),
+		);
 	});
 });
