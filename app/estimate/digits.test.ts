@@ -1,7 +1,7 @@
 // Values of a billion that differ by one: what plain sums of squares get wrong from the first digit on.
 import { describe, expect, test } from "vitest";
 import { momentsOf, sumMoments } from "#app/lib/moments.ts";
-import { changeEstimate } from "#app/estimate/change.ts";
+import { changeEstimate, type TwoSeasonStratum } from "#app/estimate/change.ts";
 import type { DomainStratum } from "#app/estimate/domain.ts";
 import { meanEstimate, ratioEstimate, totalEstimate } from "#app/estimate/estimators.ts";
 import { pairedMomentsOf } from "#app/lib/paired-moments.ts";
@@ -46,6 +46,24 @@ function errorOfMean(inside: (i: number) => boolean): number {
 	return Math.sqrt(variance);
 }
 
+/** The strata in two seasons, in which the same operations answered, moved up by `far`. */
+function twoSeasons(far: number): TwoSeasonStratum[] {
+	return offsets.map((own, h) => {
+		const answers = own.map((offset, i) => ({ now: far + offset, before: far + ((i * 29) % 9) / 4 }));
+		const respondents = own.length;
+		const weight = frameSizes[h]! / respondents;
+		const design = { weight, samplingFraction: 1 / weight, respondents };
+		const domain = pairedMomentsOf(
+			answers.map(({ before, now }) => ({ yBefore: before, xBefore: 1, yNow: now, xNow: 1 })),
+		);
+		return {
+			before: { ...design, domain: momentsOf(answers.map(({ before }) => ({ y: before, x: 1 }))) },
+			now: { ...design, domain: momentsOf(answers.map(({ now }) => ({ y: now, x: 1 }))) },
+			both: { frameSize: frameSizes[h]!, respondents, domain },
+		};
+	});
+}
+
 const relativeError = (actual: number, expected: number) => Math.abs(actual / expected - 1);
 
 describe("values of 1e9 with spread 1 have the right standard error to 1e-9", () => {
@@ -79,22 +97,7 @@ describe("values of 1e9 with spread 1 have the right standard error to 1e-9", ()
 	});
 
 	test("of a change between seasons", () => {
-		const pairs = (far: number) =>
-			offsets.map((own, h) => {
-				const answers = own.map((offset, i) => ({ now: far + offset, before: far + ((i * 29) % 9) / 4 }));
-				const respondents = own.length;
-				const weight = frameSizes[h]! / respondents;
-				const design = { weight, samplingFraction: 1 / weight, respondents };
-				const domain = pairedMomentsOf(
-					answers.map(({ before, now }) => ({ yBefore: before, xBefore: 1, yNow: now, xNow: 1 })),
-				);
-				return {
-					before: { ...design, domain: momentsOf(answers.map(({ before }) => ({ y: before, x: 1 }))) },
-					now: { ...design, domain: momentsOf(answers.map(({ now }) => ({ y: now, x: 1 }))) },
-					both: { frameSize: frameSizes[h]!, respondents, domain },
-				};
-			});
-		const [near, far] = [changeEstimate("mean", pairs(0)), changeEstimate("mean", pairs(billion))];
+		const [near, far] = [changeEstimate("mean", twoSeasons(0)), changeEstimate("mean", twoSeasons(billion))];
 		expect(relativeError(far.difference!.standardError!, near.difference!.standardError!)).toBeLessThan(1e-9);
 	});
 });
