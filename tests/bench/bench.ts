@@ -14,11 +14,19 @@ const { values, positionals } = parseArgs({
 
 const tidy = (number: number | null) => (number === null ? null : Number(number.toPrecision(4)));
 
-function print({ name, value, unit, floor = null, ratio = floor === null ? null : value / floor, goal }: Line): void {
+function printLine({
+	name,
+	value,
+	unit,
+	floor = null,
+	ratio = floor === null ? null : value / floor,
+	goal,
+}: Line): void {
 	const line = { name, value: tidy(value), unit, floor: tidy(floor), ratio: tidy(ratio), ...(goal && { goal }) };
 	process.stdout.write(`${JSON.stringify(line)}\n`);
 }
 
+const print = (...lines: Line[]) => lines.forEach(printLine);
 const bench: Bench = {
 	print,
 	sizes: values.sizes.split(",").map(Number),

@@ -4,8 +4,8 @@ import { estimateSurvey } from "#app/estimate/survey.ts";
 import { listTallies } from "#app/tally/tally.server.ts";
 import type { FrameStratum, KeptTally } from "#app/tally/tally.ts";
 import type { DB } from "#db/schema.ts";
-import type { Bench } from "./line.ts";
-import { medians } from "./timing.ts";
+import { type Bench, linesOf } from "./line.ts";
+import { medians, timed } from "./timing.ts";
 
 /** Reads a survey's kept tallies and estimates loss, with its standard error, in every county, district, state and region. */
 export async function estimates(bench: Bench, owner: Client, surveyId: string, of: string): Promise<void> {
@@ -21,12 +21,14 @@ export async function estimates(bench: Bench, owner: Client, surveyId: string, o
 		};
 		let made = 0;
 		const time = await medians(bench.runs, {
-			read: async () => void (await read()),
-			estimate: async () => void (made = estimateSurvey(input).estimates.length),
+			read: () => timed(read),
+			estimate: () => timed(() => (made = estimateSurvey(input).estimates.length)),
 		});
 		const goal = "under 1,000 together";
-		bench.print({ name: `reading the ${tallies.length} tallies of ${of}`, value: time.read, unit: "ms", goal });
-		bench.print({ name: `${made} estimates with standard errors`, value: time.estimate, unit: "ms", goal });
+		bench.print(
+			...linesOf({ name: `reading the ${tallies.length} tallies of ${of}`, times: time.read, goal }),
+			...linesOf({ name: `${made} estimates with standard errors`, times: time.estimate, goal }),
+		);
 	} finally {
 		await db.destroy();
 	}

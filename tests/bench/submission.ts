@@ -1,14 +1,13 @@
-import type { Kysely } from "kysely";
+import { type Kysely, sql } from "kysely";
 import { Client } from "pg";
 import { setScope } from "#app/auth/scope.server.ts";
 import { afterHarvest } from "#app/collect/forms/after-harvest.ts";
 import { writeFacts } from "#app/tally/facts.server.ts";
-import { rebuildTallies } from "#app/tally/tally.server.ts";
 import { connect } from "#db/connect.ts";
 import type { DB } from "#db/schema.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
-import type { Bench } from "./line.ts";
-import { median, medians } from "./timing.ts";
+import { type Bench, linesOf } from "./line.ts";
+import { backendOf, medianTimes, medians, timedInBackend, type Times } from "./timing.ts";
 
 /** As many neighbors in a county and stratum as a million operations have in 3,100 counties and 12 strata, and ten times that. */
 const neighbors = [27, 270];
@@ -30,23 +29,16 @@ export async function submission(bench: Bench): Promise<void> {
 			const of = `one submission among ${count} neighbors`;
 			const goal = "under 5";
 			const first = await timeEach(app, newcomers);
-			bench.print({ name: `facts and tallies of ${of}`, value: first, unit: "ms", goal });
+			bench.print(...linesOf({ name: `facts and tallies of ${of}`, times: first, goal }));
 			await owner.query(correction, [submitted(1500)]);
-			bench.print({
-				name: `facts and tallies of ${of}, corrected`,
-				value: await timeEach(app, newcomers),
-				unit: "ms",
-				goal,
-			});
+			const corrected = await timeEach(app, newcomers);
+			bench.print(...linesOf({ name: `facts and tallies of ${of}, corrected`, times: corrected, goal }));
+			const pid = await backendOf(owner);
 			const { rebuild } = await medians(3, {
-				rebuild: () =>
-					app.transaction().execute(async (trx) => {
-						await setScope(trx, { kind: "network" });
-						await rebuildTallies(trx, surveyId);
-					}),
+				rebuild: () => timedInBackend(pid, () => owner.query("select collect.retally_survey($1)", [surveyId])),
 			});
 			const responses = (count * strata + samples).toLocaleString("en");
-			bench.print({ name: `rebuild of ${responses} responses beside ${of}`, value: rebuild, unit: "ms", floor: first });
+			bench.print(...linesOf({ name: `rebuild of ${responses} responses beside ${of}`, times: rebuild, floor: first }));
 		} finally {
 			await Promise.all([owner.end(), app.destroy()]);
 		}
@@ -55,17 +47,16 @@ export async function submission(bench: Bench): Promise<void> {
 
 type Newcomer = { operation_id: string; response_id: string };
 
-async function timeEach(app: Kysely<DB>, newcomers: Newcomer[]): Promise<number> {
-	const times: number[] = [];
+async function timeEach(app: Kysely<DB>, newcomers: Newcomer[]): Promise<Times> {
+	const times: Times[] = [];
 	for (const { operation_id, response_id } of newcomers) {
 		await app.transaction().execute(async (trx) => {
 			await setScope(trx, { kind: "grower", operationIds: [operation_id] });
-			const began = performance.now();
-			await writeFacts(trx, response_id);
-			times.push(performance.now() - began);
+			const { rows } = await sql<{ pid: number }>`select pg_backend_pid() as pid`.execute(trx);
+			times.push(await timedInBackend(rows[0]!.pid, () => writeFacts(trx, response_id)));
 		});
 	}
-	return median(times.slice(1));
+	return medianTimes(times.slice(1));
 }
 
 /** A survey in which all neighbors have facts and tallies, and the newcomers have sent in and have none yet. */

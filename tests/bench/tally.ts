@@ -1,9 +1,9 @@
 import { Client } from "pg";
 import { createTestDatabase } from "#tests/helpers/database.ts";
 import { estimates } from "./estimates.ts";
-import type { Bench } from "./line.ts";
+import { type Bench, linesOf } from "./line.ts";
 import { makeFacts } from "./made-facts.ts";
-import { growthExponent, medians } from "./timing.ts";
+import { backendOf, growthExponent, medians, timedInBackend } from "./timing.ts";
 
 const plain = `select county_fips, stratum_key, count(*), sum(x), sum(y) from collect.fact where survey_id = $1
 	group by county_fips, stratum_key`;
@@ -17,14 +17,14 @@ export async function tally(bench: Bench): Promise<void> {
 	await using database = await createTestDatabase();
 	const owner = new Client({ connectionString: database.ownerUrl });
 	await owner.connect();
-	// As the function that tallies a whole survey sets them, for all three queries alike.
-	await owner.query("set work_mem = '64MB'; set jit = off");
+	// As the function that tallies a whole survey has them (what writes is never parallel), for all three queries alike.
+	await owner.query("set work_mem = '64MB'; set jit = off; set max_parallel_workers_per_gather = 0");
 	try {
 		const points: Record<"moments" | "whole", { size: number; time: number }[]> = { moments: [], whole: [] };
 		for (const size of bench.sizes) {
 			const time = await measureSize(bench, owner, size);
-			points.moments.push({ size, time: time.moments });
-			points.whole.push({ size, time: time.whole });
+			for (const name of ["moments", "whole"] as const)
+				points[name].push({ size, time: time[name].processor ?? time[name].clock });
 		}
 		if (bench.sizes.length > 1) {
 			for (const [name, sizes] of Object.entries(points))
@@ -50,29 +50,27 @@ export async function tally(bench: Bench): Promise<void> {
 async function measureSize(bench: Bench, owner: Client, size: number) {
 	const surveyId = crypto.randomUUID();
 	await makeFacts(owner, surveyId, size);
-	const run = (query: string) => () => timeInDatabase(owner, query, surveyId);
-	const time = await medians(bench.runs, { plain: run(plain), moments: run(moments), whole: run(whole) });
+	const pid = await backendOf(owner);
+	// Every row is made and none sent.
+	const run = (query: string) => () =>
+		timedInBackend(pid, () =>
+			owner.query(`explain (analyze, timing off) ${query.replace("$1", owner.escapeLiteral(surveyId))}`),
+		);
+	const times = await medians(bench.runs, { plain: run(plain), moments: run(moments), whole: run(whole) });
 	const of = `${size.toLocaleString("en")} responses`;
-	const line = { unit: "ms", floor: time.plain };
-	bench.print({ ...line, name: `tally of ${of}`, value: time.moments, goal: "at most 1.5 times the floor" });
-	const withOwners = `tally of ${of} with owners and two largest`;
-	bench.print({ ...line, name: withOwners, value: time.whole, goal: "at most 4 times the floor" });
-	const rebuild = await medians(1, {
-		once: async () => {
-			await owner.query("truncate collect.tally");
-			await owner.query("select collect.retally_survey($1)", [surveyId]);
-		},
-	});
-	bench.print({ ...line, name: `rebuild of ${of}, tallies written`, value: rebuild.once });
-	if (size === 1_000_000 || size === bench.sizes.at(-1)) await estimates(bench, owner, surveyId, of);
-	return time;
-}
-
-/** What the database says that it took, every row made and none sent. */
-async function timeInDatabase(owner: Client, query: string, surveyId: string): Promise<number> {
-	const { rows } = await owner.query(
-		`explain (analyze, timing off) ${query.replace("$1", owner.escapeLiteral(surveyId))}`,
+	const floor = times.plain;
+	bench.print(
+		...linesOf({ name: `tally of ${of}`, times: times.moments, floor, goal: "at most 1.5 times the floor" }),
+		...linesOf({
+			name: `tally of ${of} with owners and two largest`,
+			times: times.whole,
+			floor,
+			goal: "at most 4 times the floor",
+		}),
 	);
-	const said = String((rows.at(-1) as Record<string, string>)["QUERY PLAN"]);
-	return Number(/Execution Time: ([\d.]+) ms/.exec(said)![1]);
+	await owner.query("truncate collect.tally");
+	const rebuild = await timedInBackend(pid, () => owner.query("select collect.retally_survey($1)", [surveyId]));
+	bench.print(...linesOf({ name: `rebuild of ${of}, tallies written`, times: rebuild, floor }));
+	if (size === 1_000_000 || size === bench.sizes.at(-1)) await estimates(bench, owner, surveyId, of);
+	return times;
 }
