@@ -21,7 +21,8 @@ export function connect(connectionString: string, options: ConnectOptions = {}):
 		connectionString,
 		max: options.max ?? 10,
 		application_name: options.name ?? "tallygrove",
-		connectionTimeoutMillis: 5_000,
+		// Waiting for a turn counts, too: a mail with a link brings many growers in one minute. A database that refuses says so at once.
+		connectionTimeoutMillis: 12_000,
 	});
 	// A server that went away is reported by the query that meets it; an idle connection's error must not end the process.
 	pool.on("error", () => {});

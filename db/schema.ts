@@ -215,6 +215,7 @@ export interface CollectResponse {
   draft_version: Generated<number>;
   first_submitted_at: Timestamp | null;
   language: string;
+  late_at: Timestamp | null;
   mode: Generated<string>;
   operation_id: string;
   pledge_version: string;
@@ -232,6 +233,7 @@ export interface CollectResponse {
 
 export interface CollectSubmission {
   answers: Json;
+  late: Generated<boolean>;
   response_id: string;
   submitted_at: Generated<Timestamp>;
   version: number;

@@ -9,6 +9,9 @@ import { isMassUnit } from "./units.ts";
 /** One operation's place in one survey. */
 export type AnswerPlace = { surveyId: string; operationId: string };
 
+/** How many days after the closing what was begun before it can still be sent in, as late. */
+const lateDays = 14;
+
 /** The one place that says what a grower can answer. */
 export async function findPlace(trx: Trx, viewer: Grower, { surveyId, operationId }: AnswerPlace) {
 	if (!isId(surveyId) || !isId(operationId) || !viewer.operationIds.includes(operationId)) return undefined;
@@ -34,6 +37,9 @@ export async function findPlace(trx: Trx, viewer: Grower, { surveyId, operationI
 			"s.closes_at as closesAt",
 			// The clock and not the transaction's beginning: who waited for a lock may have waited past the closing.
 			sql<boolean>`s.closed_at is null and s.closes_at > clock_timestamp()`.as("isOpen"),
+			sql<boolean>`least(s.closed_at, s.closes_at) > clock_timestamp() - make_interval(days => ${lateDays})`.as(
+				"isRecent",
+			),
 			"o.name as operationName",
 			"o.mass_unit",
 			"o.language",
@@ -43,12 +49,15 @@ export async function findPlace(trx: Trx, viewer: Grower, { surveyId, operationI
 		])
 		.executeTakeFirst();
 	if (!row) return undefined;
-	const { mass_unit: massUnit, ...seen } = row;
+	const { mass_unit: massUnit, isRecent, ...seen } = row;
+	const response = (await findResponse(trx, { surveyId, operationId })) ?? null;
 	return {
 		...seen,
+		/** Closed while it was being answered: what is sent in now is kept, and does not count by itself. */
+		isLate: !row.isOpen && isRecent && response !== null,
 		massUnit: isMassUnit(massUnit) ? massUnit : ("lb" as const),
 		language: row.language === "es" ? ("es" as const) : ("en" as const),
-		response: (await findResponse(trx, { surveyId, operationId })) ?? null,
+		response,
 	};
 }
 
@@ -65,20 +74,21 @@ function findResponse(trx: Trx, { surveyId, operationId }: AnswerPlace) {
 			"submitted_version as submittedVersion",
 			"receipt_code as receiptCode",
 			"submitted_at as submittedAt",
+			"late_at as lateAt",
 			"withdrawn_at as withdrawnAt",
 		])
 		.executeTakeFirst();
 }
 
 /**
- * Keeps an open survey from closing until the transaction ends: what is written here was in time, or is not written.
+ * Keeps an open survey from closing until the transaction ends: what is written here was in time, or is known to be late.
  * Closing waits, other growers do not.
  */
-export async function holdOpenSurvey(trx: Trx, viewer: Grower, place: AnswerPlace) {
+export async function holdSurvey(trx: Trx, viewer: Grower, place: AnswerPlace) {
 	// Asked before, so that nobody holds up a survey that is not theirs to answer; and after, as it then stands.
 	if (!(await findPlace(trx, viewer, place))) return "not_found" as const;
 	const { surveyId } = place;
 	await trx.selectFrom("collect.survey").select("survey_id").where("survey_id", "=", surveyId).forShare().execute();
 	const held = await findPlace(trx, viewer, place);
-	return held?.isOpen ? held : ("closed" as const);
+	return held?.isOpen || held?.isLate ? held : ("closed" as const);
 }

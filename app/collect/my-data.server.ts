@@ -96,7 +96,7 @@ async function listSurveys(trx: Trx, operationId: string, photoAddress: PhotoAdd
 async function listSubmissions(trx: Trx, responseId: string) {
 	const rows = await trx
 		.selectFrom("collect.submission")
-		.select(["version", "submitted_at", "withdrawn_at", "answers"])
+		.select(["version", "submitted_at", "late", "withdrawn_at", "answers"])
 		.where("response_id", "=", responseId)
 		.orderBy("version")
 		.execute();

@@ -67,6 +67,7 @@ async function listAsked(trx: Trx, viewer: Grower) {
 			"z.time_zone as timeZone",
 			"r.receipt_code as receiptCode",
 			"r.submitted_at as submittedAt",
+			"r.late_at as lateAt",
 			"r.withdrawn_at as withdrawnAt",
 			sql<boolean>`coalesce(r.submitted_version, 0) > 0`.as("everSent"),
 			sql<boolean>`r.response_id is not null`.as("begun"),

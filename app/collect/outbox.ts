@@ -40,7 +40,7 @@ export type Outbox = {
 	/** Whether the grower has sent the answers in and the server does not know it yet. */
 	sendIn: boolean;
 };
-export type KeptAnswer = { kept: boolean; version: number; unread: string[] };
+export type KeptAnswer = { kept: boolean; version: number; unread: string[]; late?: boolean };
 
 export const emptyOutbox: Outbox = { steps: {}, photos: [], count: 0, sendIn: false };
 

@@ -28,7 +28,12 @@ export async function findOwnAnswers(trx: Trx, viewer: Grower, place: AnswerPlac
 		receiptCode: response.receiptCode,
 		withdrawnAt: response.withdrawnAt,
 		/** Why an answer that was sent in can still be withdrawn or not; null where there is none to withdraw. */
-		withdrawal: response.submittedAt === null ? null : released ? ("released" as const) : ("possible" as const),
+		withdrawal:
+			response.submittedAt === null && response.lateAt === null
+				? null
+				: released
+					? ("released" as const)
+					: ("possible" as const),
 		...view,
 	};
 }

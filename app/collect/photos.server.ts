@@ -31,7 +31,7 @@ export async function mayAddPhoto(
 ): Promise<Refused | "known" | "too_many" | { responseId: string }> {
 	const found = await findPlace(trx, viewer, place);
 	if (!found) return "not_found";
-	if (!found.isOpen) return "closed";
+	if (!found.isOpen && !found.isLate) return "closed";
 	if (!found.response) return "not_started";
 	if (!asksForPhotos(found.definition as FormDefinition, questionKey)) return "question_not_found";
 	const { responseId } = found.response;
@@ -92,7 +92,7 @@ export async function removePhoto(
  */
 export async function findOwnPhoto(trx: Trx, viewer: Grower, place: AnswerPlace, photoId: string) {
 	const found = isId(photoId) ? await findPlace(trx, viewer, place) : undefined;
-	if (!found?.response || (viewer.link && !found.isOpen)) return undefined;
+	if (!found?.response || (viewer.link && !found.isOpen && !found.isLate)) return undefined;
 	return findFileName(trx, found.response.responseId, photoId);
 }
 

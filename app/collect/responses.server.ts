@@ -3,7 +3,7 @@ import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
 import type { Words } from "#app/lib/words.ts";
-import { type AnswerPlace, findPlace, holdOpenSurvey } from "./answer-place.server.ts";
+import { type AnswerPlace, findPlace, holdSurvey } from "./answer-place.server.ts";
 import {
 	findNewestSubmission,
 	listAnswers,
@@ -33,6 +33,8 @@ export type Answering = {
 	opensAt: Date;
 	closesAt: Date;
 	isOpen: boolean;
+	/** Whether it closed after it was begun, and not long ago: what is sent in now is kept as late. */
+	isLate: boolean;
 	massUnit: MassUnit;
 	/** Pounds that the operation's crate holds, by crop, as it last told, in this survey or an earlier one. */
 	crates: Record<string, number>;
@@ -52,6 +54,8 @@ export type ResponseSoFar = {
 	submittedVersion: number;
 	receiptCode: string | null;
 	submittedAt: Date | null;
+	/** When it was sent in after the closing, if it was. */
+	lateAt: Date | null;
 	/** Whether what would be sent in now differs from what was sent in last. */
 	changedSinceSubmission: boolean;
 };
@@ -83,11 +87,11 @@ export async function findAnswering(trx: Trx, viewer: Grower, place: AnswerPlace
 }
 
 /**
- * Takes an open survey's response for writing until the transaction ends, and reads it as it then stands: two taps at
+ * Takes the response to a survey that is open, or closed while it was answered for writing until the transaction ends, and reads it as it then stands: two taps at
  * once meet here, and the second sees what the first did.
  */
 export async function lockAnswering(trx: Trx, viewer: Grower, place: AnswerPlace) {
-	const held = await holdOpenSurvey(trx, viewer, place);
+	const held = await holdSurvey(trx, viewer, place);
 	if (typeof held === "string") return held;
 	await trx
 		.selectFrom("collect.response")
@@ -97,7 +101,7 @@ export async function lockAnswering(trx: Trx, viewer: Grower, place: AnswerPlace
 		.forUpdate()
 		.execute();
 	const answering = await findAnswering(trx, viewer, place);
-	if (!answering?.isOpen) return "closed" as const;
+	if (!answering?.isOpen && !answering?.isLate) return "closed" as const;
 	return answering.response ? { ...answering, response: answering.response } : ("not_started" as const);
 }
 
@@ -108,8 +112,9 @@ export async function startResponse(
 	place: AnswerPlace,
 	{ language, pledgeVersion }: { language: "en" | "es"; pledgeVersion: string },
 ): Promise<"started" | "already_started" | "not_found" | "closed"> {
-	const held = await holdOpenSurvey(trx, viewer, place);
+	const held = await holdSurvey(trx, viewer, place);
 	if (typeof held === "string") return held;
+	if (!held.isOpen) return "closed";
 	const { surveyId, operationId } = place;
 	const begun = await trx
 		.insertInto("collect.response")

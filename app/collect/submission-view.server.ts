@@ -7,7 +7,7 @@ import type { PlantingAsked } from "./steps.ts";
 
 export type SubmissionsView = {
 	/** Each time the answers were sent in, newest first. */
-	submissions: { version: number; submittedAt: Date; withdrawnAt: Date | null }[];
+	submissions: { version: number; submittedAt: Date; late: boolean; withdrawnAt: Date | null }[];
 	/** Which of them the groups tell of; null where none was sent in. */
 	shownVersion: number | null;
 	groups: AnswerGroup[];
@@ -26,7 +26,7 @@ export async function viewSubmissions(
 ): Promise<SubmissionsView> {
 	const submissions = await trx
 		.selectFrom("collect.submission")
-		.select(["version", "submitted_at as submittedAt", "withdrawn_at as withdrawnAt"])
+		.select(["version", "submitted_at as submittedAt", "late", "withdrawn_at as withdrawnAt"])
 		.where("response_id", "=", responseId)
 		.$if(!wanted.withdrawn, (rows) => rows.where("withdrawn_at", "is", null))
 		.orderBy("version", "desc")

@@ -22,7 +22,8 @@ type Locked = Exclude<Awaited<ReturnType<typeof lockAnswering>>, string>;
 /**
  * Sends an operation's answers in, for the first time or amended. Snapshot, receipt, disposition, facts and the receipt's
  * mail come about together or not at all. What has not changed since it was last sent in gets the same receipt, so that a
- * double tap, a retry and a second tab are harmless.
+ * double tap, a retry and a second tab are harmless. After the closing, what was begun before it is kept as late: it gets a
+ * receipt that says so, and counts in no figure by itself.
  */
 export async function submitResponse(
 	trx: Trx,
@@ -43,29 +44,35 @@ export async function submitResponse(
 	const version = response.submittedVersion + 1;
 	const receiptCode = response.receiptCode ?? newReceiptCode();
 	await keepSubmission(trx, answering, answers, { version, receiptCode, language });
-	await trx
-		.updateTable("collect.frame_operation")
-		.set({ disposition: "complete", disposition_at: sql`now()` })
-		.where("survey_id", "=", place.surveyId)
-		.where("operation_id", "=", place.operationId)
-		.where("disposition", "!=", "complete")
-		.execute();
-	await writeFacts(trx, response.responseId);
+	if (answering.isOpen) await countIn(trx, place, response.responseId);
 	await queueReceipt(trx, viewer, place, version);
+	const late = !answering.isOpen;
 	await logEvent(trx, {
 		personId: viewer.person?.personId ?? null,
 		action: version === 1 ? "response.submitted" : "response.amended",
 		subjectKind: "response",
 		subjectId: response.responseId,
 		stateFips: answering.stateFips,
-		detail: { surveyId: place.surveyId, operationId: place.operationId, version, byLink: viewer.link !== null },
+		detail: { surveyId: place.surveyId, operationId: place.operationId, version, late, byLink: viewer.link !== null },
 	});
 	return { outcome: "submitted", receiptCode, version };
 }
 
+/** From here on the answers stand in the response rates and in the figures. */
+async function countIn(trx: Trx, { surveyId, operationId }: AnswerPlace, responseId: string): Promise<void> {
+	await trx
+		.updateTable("collect.frame_operation")
+		.set({ disposition: "complete", disposition_at: sql`now()` })
+		.where("survey_id", "=", surveyId)
+		.where("operation_id", "=", operationId)
+		.where("disposition", "!=", "complete")
+		.execute();
+	await writeFacts(trx, responseId);
+}
+
 async function keepSubmission(
 	trx: Trx,
-	{ plantings, response: { responseId } }: Locked,
+	{ plantings, isOpen, response: { responseId } }: Locked,
 	answers: Answer[],
 	{ version, receiptCode, language }: { version: number; receiptCode: string; language: "en" | "es" },
 ): Promise<void> {
@@ -75,15 +82,16 @@ async function keepSubmission(
 	};
 	await trx
 		.insertInto("collect.submission")
-		.values({ response_id: responseId, version, answers: JSON.stringify(submission) })
+		.values({ response_id: responseId, version, answers: JSON.stringify(submission), late: !isOpen })
 		.execute();
 	await trx
 		.updateTable("collect.response")
 		.set({
 			submitted_version: version,
 			receipt_code: receiptCode,
-			first_submitted_at: sql`coalesce(first_submitted_at, now())`,
-			submitted_at: sql`now()`,
+			...(isOpen
+				? { first_submitted_at: sql`coalesce(first_submitted_at, now())`, submitted_at: sql`now()`, late_at: null }
+				: { late_at: sql`now()` }),
 			withdrawn_at: null,
 			language,
 		})

@@ -63,6 +63,7 @@ export async function findMailing(trx: Trx, mailingId: string) {
 			"r.language as response_language",
 			"r.receipt_code",
 			"r.submitted_at",
+			"r.late_at",
 			"r.withdrawn_at",
 			// A new link was asked for after this one was queued: sending it would bring the older mail to life again.
 			eb

@@ -19,12 +19,12 @@ export async function withdrawAnswer(trx: Trx, viewer: Grower, place: AnswerPlac
 	await trx.selectFrom("collect.survey").select("survey_id").where("survey_id", "=", surveyId).forShare().execute();
 	const response = await trx
 		.selectFrom("collect.response")
-		.select(["response_id", "state_fips", "submitted_at", "withdrawn_at"])
+		.select(["response_id", "state_fips", "submitted_at", "late_at", "withdrawn_at"])
 		.where("survey_id", "=", surveyId)
 		.where("operation_id", "=", operationId)
 		.forUpdate()
 		.executeTakeFirst();
-	if (!response?.submitted_at) return response?.withdrawn_at ? "already_withdrawn" : "not_sent";
+	if (!response?.submitted_at && !response?.late_at) return response?.withdrawn_at ? "already_withdrawn" : "not_sent";
 	if ((await underScope(trx, { kind: "network" }, () => endDrafts(trx, surveyId))) === "released") return "released";
 
 	await markWithdrawn(trx, response.response_id);
@@ -91,7 +91,7 @@ async function markWithdrawn(trx: Trx, responseId: string): Promise<void> {
 		.execute();
 	await trx
 		.updateTable("collect.response")
-		.set({ withdrawn_at: sql`now()`, receipt_code: null, first_submitted_at: null, submitted_at: null })
+		.set({ withdrawn_at: sql`now()`, receipt_code: null, first_submitted_at: null, submitted_at: null, late_at: null })
 		.where("response_id", "=", responseId)
 		.execute();
 }

@@ -33,10 +33,7 @@ export async function composeMail(mailing: Mailing, link: string | null): Promis
 			link: mailing.kind === "thank_you" ? `${env().BASE_URL}/orchard/compare/${mailing.survey_id}` : link,
 			mapLink: `${env().BASE_URL}/map?area=${mailing.county_fips}`,
 			stopAddress,
-			receipt:
-				mailing.receipt_code && mailing.submitted_at
-					? { code: mailing.receipt_code, submittedAt: mailing.submitted_at }
-					: null,
+			receipt: receiptOf(mailing),
 		},
 		t,
 		formatterFor(language, t),
@@ -50,4 +47,9 @@ export async function composeMail(mailing: Mailing, link: string | null): Promis
 		messageId: messageIdOf(mailing.mailing_id),
 		stopAddress,
 	};
+}
+
+function receiptOf({ receipt_code: code, late_at: lateAt, submitted_at: inTimeAt }: Mailing) {
+	const submittedAt = lateAt ?? inTimeAt;
+	return code && submittedAt ? { code, submittedAt, isLate: lateAt !== null } : null;
 }

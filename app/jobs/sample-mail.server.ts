@@ -53,6 +53,7 @@ export async function composeSample({ survey, kind, language, to }: Sample): Pro
 		response_language: language,
 		receipt_code: "KD7M-3XRA",
 		submitted_at: now,
+		late_at: null,
 		withdrawn_at: null,
 		replaced: false,
 	};

@@ -23,7 +23,8 @@ export type LetterFields = {
 	mapLink: string;
 	/** Where mail of this kind is stopped; null where it was asked for. */
 	stopAddress: string | null;
-	receipt: { code: string; submittedAt: Date } | null;
+	/** `isLate` when the answers came after the closing. */
+	receipt: { code: string; submittedAt: Date; isLate: boolean } | null;
 };
 
 /** Writes the letter of a mailing. Its words are `mail:<kind>.…`, one paragraph a key. */
@@ -36,7 +37,7 @@ export function writeLetter(fields: LetterFields, t: TFunction, format: Formatte
 	const body: Paragraph[] =
 		kind === "thank_you"
 			? [say("what"), ...button, say("sign_in"), { link: mapLink, label: t("mail:thank_you.map") }, say("help")]
-			: [say("what"), ...button, say("until"), say("pledge"), say("help")];
+			: [say("what"), ...button, say(fields.receipt?.isLate ? "late" : "until"), say("pledge"), say("help")];
 	return {
 		language: fields.language,
 		subject: say("subject"),

@@ -9,7 +9,7 @@ type FactRow = { measure_key: string; crop_key: string; y: number | null; x: num
 /**
  * Brings the facts of one response to its newest submission, under the owner, county, state and stratum of the frozen
  * frame. What review set aside stays so while its figures are the same; new figures are judged anew. A response that was
- * never sent in has no facts, nor one that was withdrawn. The caller holds the response locked.
+ * never sent in has no facts, nor one that was withdrawn or came after the closing. The caller holds the response locked.
  */
 export async function writeFacts(trx: Transaction<DB>, responseId: string): Promise<void> {
 	const sent = await trx
@@ -22,6 +22,7 @@ export async function writeFacts(trx: Transaction<DB>, responseId: string): Prom
 		)
 		.where("r.response_id", "=", responseId)
 		.where("b.withdrawn_at", "is", null)
+		.where("b.late", "=", false)
 		.orderBy("b.version", "desc")
 		.limit(1)
 		.select(["b.answers", "v.definition"])

@@ -214,10 +214,28 @@ test("names and notes with markup are shown as they were typed", async () => {
 	expect(review.text).not.toContain("<script>alert(2)");
 });
 
-test("a survey that closes while it is answered says so, and keeps what was saved", async () => {
+test("a survey that closes while it is answered takes what comes as late, and says so", async () => {
+	const { visitor, address, surveyId, first } = await begun();
+	await asDesk(associate, (trx) => closeSurvey(trx, associate, surveyId));
+	const screen = await visitor.get(first);
+	expect(screen.text).toContain("This survey has closed");
+	const planting = { bearing_trees: "40", normal_crop: "800 lb", harvested: "800 lb" };
+	let next = first;
+	while (next.includes("/planting-")) next = (await visitor.post(next, planting)).location;
+	expect((await visitor.get(`${address}/review`)).text).toContain("What you send is kept as late");
+	const sent = await visitor.post(`${address}/review`, {});
+	expect(sent.location).toMatch(/\/receipt$/);
+	const receipt = await visitor.get(sent.location);
+	expect(receipt.text).toContain("Your answers arrived after the closing");
+	expect(receipt.text).not.toContain("You can change your answers until");
+});
+
+test("two weeks after the closing a survey takes nothing, says so, and keeps what was saved", async () => {
 	const { visitor, address, surveyId } = await begun();
 	await visitor.post(`${address}/ask/next_year`, { comment: "Before the closing" });
-	await asDesk(associate, (trx) => closeSurvey(trx, associate, surveyId));
+	await owner.query("update collect.survey set closed_at = now() - interval '15 days' where survey_id = $1", [
+		surveyId,
+	]);
 	for (const answer of [
 		await visitor.get(address),
 		await visitor.get(`${address}/review`),

@@ -131,5 +131,9 @@ test("whoever may not answer keeps nothing, and forged changes are refused", asy
 	const answers = "collect.answer join collect.response using (response_id) where survey_id = any($1)";
 	expect(await count(owner, answers, [[mine.surveyId, theirs.surveyId]])).toBe(0);
 	await asDesk(associate, (trx) => closeSurvey(trx, associate, mine.surveyId));
-	expect((await mine.visitor.post(mine.keep, typed("1"))).status).toBe(410);
+	expect(await kept(mine.visitor.post(mine.keep, typed("1")))).toMatchObject([200, { kept: true, late: true }]);
+	await owner.query("update collect.survey set closed_at = now() - interval '15 days' where survey_id = $1", [
+		mine.surveyId,
+	]);
+	expect((await mine.visitor.post(mine.keep, typed("2"))).status).toBe(410);
 });

@@ -168,13 +168,24 @@ test("a phone without room says what that means, and a full one does not lose wh
 	await expect.poll(() => heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 111 });
 });
 
-test("a survey that closes while somebody types says so", async () => {
+/** Closed, and so long ago that late answers are not taken either. */
+async function closeLongAgo(surveyId: string): Promise<void> {
+	await owner.query("update collect.survey set closed_at = now() - interval '15 days' where survey_id = $1", [
+		surveyId,
+	]);
+}
+
+test("a survey that closes while somebody types says so, and takes it as late", async () => {
 	const grower = await asked();
 	const page = await openPhone(browser, grower);
 	await asDesk(associate, (trx) => closeSurvey(trx, associate, grower.place.surveyId));
 	await page.fill("[name=harvested]", "120");
+	await word(page).getByText("The survey has closed meanwhile, so it counts as late.", { exact: false }).waitFor();
+	expect(await heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 120 });
+	await closeLongAgo(grower.place.surveyId);
+	await page.fill("[name=harvested]", "121");
 	await word(page).getByText("The survey has closed. What you type now is not kept.").waitFor();
-	expect(await heldByServer(owner, grower.place.surveyId)).toEqual({});
+	expect(await heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 120 });
 });
 
 test("another grower's link on the same phone shows nothing of the first one, whose answers wait for his own", async () => {
@@ -280,13 +291,13 @@ test("what the phone has taken along is not drawn in another grower's session", 
 	expect(await page.locator("form").count()).toBe(0);
 });
 
-test("a survey that closed before a phone had signal again says what was not received", async () => {
+test("a survey that closed long before a phone had signal again says what was not received", async () => {
 	const grower = await asked();
 	const page = await openPhone(browser, grower);
 	await page.context().setOffline(true);
 	await page.fill("[name=harvested]", "140");
 	await word(page).getByText("Kept on this phone", { exact: false }).waitFor();
-	await asDesk(associate, (trx) => closeSurvey(trx, associate, grower.place.surveyId));
+	await closeLongAgo(grower.place.surveyId);
 	await page.close();
 	await page.context().setOffline(false);
 	const again = await openWindow(page.context(), grower.address);

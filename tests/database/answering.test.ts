@@ -343,9 +343,9 @@ describe("whose answers", () => {
 
 describe("a closed survey", () => {
 	test.each([
-		["by hand", "closed_at = now()"],
-		["by time", "closes_at = now() - interval '1 second'"],
-	])("closed %s takes no answer and still shows those it has", async (_how, change) => {
+		["by hand", "closed_at = now() - interval '15 days'"],
+		["by time", "closes_at = now() - interval '14 days 1 second', opened_at = now() - interval '20 days'"],
+	])("closed %s two weeks ago takes no answer and still shows those it has", async (_how, change) => {
 		const { place, grower, step } = await askGrower(owner, associate);
 		await typeStep(grower, place, step, pounds(40, 4000, 4000));
 		await owner.query(`update collect.survey set ${change} where survey_id = $1`, [place.surveyId]);

@@ -3,8 +3,19 @@ import type { Client } from "pg";
 import type { Associate } from "#app/auth/viewer.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
 import { submitResponse } from "#app/collect/submission.server.ts";
+import { withdrawAnswer } from "#app/collect/withdrawal.server.ts";
+import { writeFacts } from "#app/tally/facts.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
-import { answeringOf, asGrower, askGrower, countJobs, pounds, submit, typeStep } from "./answering-fixture.ts";
+import {
+	answeringOf,
+	asGrower,
+	askGrower,
+	beginAnswering,
+	countJobs,
+	pounds,
+	submit,
+	typeStep,
+} from "./answering-fixture.ts";
 import { addPerson, asDesk, connectOwner, count, loadPlaces, useDatabase } from "./surveys-fixture.ts";
 
 let database: Awaited<ReturnType<typeof createTestDatabase>>;
@@ -280,7 +291,7 @@ describe("once", () => {
 		});
 		await closing;
 		expect(order).toEqual(["sent", "closed"]);
-		expect(await submit(grower, place)).toBe("closed");
+		expect((await leftBy(place.surveyId)).submissions).toBe(1);
 	});
 });
 
@@ -347,3 +358,71 @@ function receiptOf(sent: Awaited<ReturnType<typeof submit>>): { receiptCode: str
 	if (typeof sent === "string" || !("receiptCode" in sent)) throw new Error("nothing was sent in");
 	return { receiptCode: sent.receiptCode };
 }
+
+const close = (surveyId: string) => asDesk(associate, (trx) => closeSurvey(trx, associate, surveyId));
+
+describe("after the closing", () => {
+	test("what was begun before is kept as late, with a receipt, and counts nowhere", async () => {
+		const { place, grower, step } = await askGrower(owner, associate);
+		await typeStep(grower, place, step, pounds(40, 4000, 1000));
+		await close(place.surveyId);
+		expect(await answeringOf(grower, place)).toMatchObject({ isOpen: false, isLate: true });
+		expect(await typeStep(grower, place, "causes", { cause_freeze: "100" })).toBe("saved");
+		const sent = await submit(grower, place);
+		expect(sent).toMatchObject({ outcome: "submitted", version: 1 });
+		const { receiptCode } = sent as { receiptCode: string };
+		expect(await submit(grower, place)).toEqual({ outcome: "unchanged", version: 1, receiptCode });
+		const counts = { submissions: 1, complete: 0, facts: 0, mailings: ["receipt 1"] };
+		expect(await leftBy(place.surveyId)).toMatchObject(counts);
+		const late = "collect.submission join collect.response using (response_id) where late and survey_id = $1";
+		expect(await count(owner, late, [place.surveyId])).toBe(1);
+		const { response } = await answeringOf(grower, place);
+		expect(response).toMatchObject({ submittedAt: null, lateAt: expect.any(Date), changedSinceSubmission: false });
+	});
+
+	test("what was sent in before stays what counts, and what comes late stands beside it", async () => {
+		const { place, grower, step } = await askGrower(owner, associate);
+		await typeStep(grower, place, step, pounds(40, 4000, 4000));
+		await submit(grower, place);
+		const before = await factsIn(place.surveyId);
+		const inTime = (await answeringOf(grower, place)).response?.submittedAt;
+		await close(place.surveyId);
+		await typeStep(grower, place, step, pounds(40, 4000, 3000));
+		await typeStep(grower, place, "causes", { cause_freeze: "100" });
+		expect(await submit(grower, place)).toMatchObject({ outcome: "submitted", version: 2 });
+		expect(await factsIn(place.surveyId)).toEqual(before);
+		expect((await snapshotOf(place.surveyId)).version).toBe(2);
+		const { response } = await answeringOf(grower, place);
+		await asGrower(grower, (trx) => writeFacts(trx, response!.responseId));
+		expect(await factsIn(place.surveyId)).toEqual(before);
+		expect(response).toMatchObject({ submittedAt: inTime, lateAt: expect.any(Date) });
+	});
+
+	test("opened again, the survey counts what is then sent in", async () => {
+		const { place, grower, step } = await askGrower(owner, associate);
+		await typeStep(grower, place, step, pounds(40, 4000, 4000));
+		await owner.query("update collect.survey set closes_at = now() - interval '1 minute' where survey_id = $1", [
+			place.surveyId,
+		]);
+		expect(await submit(grower, place)).toMatchObject({ outcome: "submitted" });
+		await owner.query("update collect.survey set closes_at = now() + interval '1 day' where survey_id = $1", [
+			place.surveyId,
+		]);
+		await typeStep(grower, place, step, pounds(41, 4000, 4000));
+		expect(await submit(grower, place)).toMatchObject({ outcome: "submitted", version: 2 });
+		expect(await leftBy(place.surveyId)).toMatchObject({ submissions: 2, complete: 1 });
+		expect((await answeringOf(grower, place)).response).toMatchObject({ lateAt: null, submittedAt: expect.any(Date) });
+	});
+
+	test("what came late can be withdrawn, and nobody begins after the closing", async () => {
+		const { place, grower, step } = await askGrower(owner, associate);
+		await typeStep(grower, place, step, pounds(40, 4000, 4000));
+		await close(place.surveyId);
+		await submit(grower, place);
+		expect(await asGrower(grower, (trx) => withdrawAnswer(trx, grower, place))).toBe("withdrawn");
+		const other = await askGrower(owner, associate, { begin: false });
+		await close(other.place.surveyId);
+		expect(await beginAnswering(other.grower, other.place)).toBe("closed");
+		expect(await answeringOf(other.grower, other.place)).toMatchObject({ isOpen: false, isLate: false });
+	});
+});

@@ -107,8 +107,9 @@ function Versions({ response }: { response: Route.ComponentProps["loaderData"] }
 	if (submissions.length === 0) return t("response.notSentIn");
 	return (
 		<ul>
-			{submissions.map(({ version, submittedAt }) => {
-				const words = t("response.version", { version, moment: format.moment(submittedAt, timeZone) });
+			{submissions.map(({ version, submittedAt, late }) => {
+				const moment = format.moment(submittedAt, timeZone);
+				const words = t(late ? "response.versionLate" : "response.version", { version, moment });
 				return (
 					<li key={version}>
 						{version === shownVersion ? (

@@ -15,6 +15,8 @@ export type KeptAnswer = {
 	version: number;
 	/** Questions whose boxes hold what cannot be read yet; what was kept of them before stays. */
 	unread: string[];
+	/** Set when the survey has closed since it was begun: what is kept counts as late. */
+	late?: boolean;
 };
 
 /**
@@ -40,5 +42,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	if (kept === "not_found" || kept === "not_started") throw refusal("survey_not_found");
 	if (kept === "step_not_found") throw refusal("page_not_found");
 	const isKept = kept.outcome !== "changed_elsewhere";
-	return data({ kept: isKept, version: kept.version, unread } satisfies KeptAnswer, { status: isKept ? 200 : 409 });
+	const late = answering.isLate ? { late: true } : {};
+	return data({ kept: isKept, version: kept.version, unread, ...late } satisfies KeptAnswer, {
+		status: isKept ? 200 : 409,
+	});
 }

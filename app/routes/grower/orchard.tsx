@@ -115,9 +115,10 @@ function SurveyState({ survey }: { survey: Operation["surveys"][number] }) {
 function HowItStands({ survey }: { survey: Operation["surveys"][number] }) {
 	const { t } = useTranslation("orchard");
 	const format = useFormat();
-	const { isOpen, receiptCode, submittedAt, withdrawnAt, timeZone } = survey;
+	const { isOpen, receiptCode, submittedAt, lateAt, withdrawnAt, timeZone } = survey;
 	if (submittedAt && receiptCode)
 		return t("home.answered", { day: format.dayOf(submittedAt, timeZone), code: receiptCode });
+	if (lateAt && receiptCode) return t("home.late", { day: format.dayOf(lateAt, timeZone), code: receiptCode });
 	if (withdrawnAt) return t("home.withdrawn", { day: format.dayOf(withdrawnAt, timeZone) });
 	return t(isOpen ? "home.notAnswered" : "home.missed");
 }

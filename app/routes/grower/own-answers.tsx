@@ -95,9 +95,10 @@ function Versions({ answers: { submissions, shownVersion, timeZone } }: { answer
 	const format = useFormat();
 	return (
 		<ul className="list-none">
-			{submissions.map(({ version, submittedAt, withdrawnAt }) => {
+			{submissions.map(({ version, submittedAt, late, withdrawnAt }) => {
 				const moment = format.moment(submittedAt, timeZone);
-				const words = withdrawnAt ? t("answers.versionWithdrawn", { moment }) : moment;
+				const kind = withdrawnAt ? "versionWithdrawn" : late ? "versionLate" : null;
+				const words = kind ? t(`answers.${kind}`, { moment }) : moment;
 				if (version !== shownVersion)
 					return (
 						<li key={version}>

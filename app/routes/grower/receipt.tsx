@@ -19,12 +19,15 @@ export const handle = { bare: true };
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const answering = await getAnswering(context, params);
 	const { response, definition, plantings, answers } = answering;
-	if (!response?.receiptCode || !response.submittedAt) {
+	const submittedAt = response?.lateAt ?? response?.submittedAt;
+	if (!response?.receiptCode || !submittedAt) {
 		throw redirect(href("/answer/:surveyId/:operationId", params), 303);
 	}
 	return {
 		code: response.receiptCode,
-		submittedAt: response.submittedAt,
+		submittedAt,
+		isLate: response.lateAt !== null,
+		isOpen: answering.isOpen,
 		changed: response.changedSinceSubmission,
 		operationName: answering.operationName,
 		closesAt: answering.closesAt,
@@ -37,10 +40,15 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 export default function Receipt({ loaderData, params }: Route.ComponentProps) {
 	const { t } = useTranslation("grower");
 	const format = useFormat();
-	const { code, submittedAt, changed, operationName, closesAt, timeZone, groups } = loaderData;
+	const { code, submittedAt, isLate, isOpen, changed, operationName, closesAt, timeZone, groups } = loaderData;
 	const closes = format.moment(closesAt, timeZone);
 	return (
 		<Page title={t("receipt.title")} lead={t("receipt.lead", { operation: operationName })}>
+			{isLate && (
+				<Notice tone="attention" title={t("late.title")}>
+					{t("late.kept")}
+				</Notice>
+			)}
 			{changed && <Notice tone="attention">{t("review.changedNotSent")}</Notice>}
 			<div className="border-2 border-line p-5">
 				<p className="text-base text-quiet">{t("receipt.code")}</p>
@@ -51,11 +59,11 @@ export default function Receipt({ loaderData, params }: Route.ComponentProps) {
 				<ul className="list-disc space-y-2 pl-6">
 					<li>{t("receipt.mail")}</li>
 					<li>{t("receipt.call")}</li>
-					<li>{t("receipt.figures")}</li>
+					{!isLate && <li>{t("receipt.figures")}</li>}
 				</ul>
 			</Section>
 			<Section title={t("receipt.yours")}>
-				<p className="mb-4">{t("receipt.amend", { closes })}</p>
+				{isOpen && <p className="mb-4">{t("receipt.amend", { closes })}</p>}
 				<div className="no-print mb-6">
 					<ButtonLink kind="secondary" to={href("/answer/:surveyId/:operationId/review", params)}>
 						{t("receipt.change")}

@@ -22,6 +22,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		groups: listAnswerLines(definition, plantings, answers),
 		steps: steps.map(({ key, screen, planting }) => ({ key, screen: { title: screen.title }, planting })),
 		closesAt: answering.closesAt,
+		isLate: answering.isLate,
 		timeZone: answering.timeZone,
 		sent: response.receiptCode !== null,
 		changed: response.changedSinceSubmission,

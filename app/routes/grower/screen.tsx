@@ -27,7 +27,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	const settings = { massUnit, crates, earlier, language: getLanguage(context) };
 	const shown = showStep(answering, response.stepChanges, params.screen, settings);
 	if (!shown) throw refusal("page_not_found");
-	return { ...shown, phone: phonePart(answering, settings.language) };
+	return { ...shown, isLate: answering.isLate, phone: phonePart(answering, settings.language) };
 }
 
 export async function action({ context, params, request }: Route.ActionArgs) {

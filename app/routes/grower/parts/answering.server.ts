@@ -11,13 +11,13 @@ export type Place = { surveyId: string; operationId: string };
 
 /**
  * The survey that somebody may answer now, with what was answered so far.
- * @throws refusal 401 or 404 for who may not, 410 when it is closed.
+ * @throws refusal 401 or 404 for who may not, 410 when it is closed and what was begun has had its time.
  */
 export async function getAnswering(context: Readonly<RouterContextProvider>, place: Place): Promise<OpenAnswering> {
 	const grower = requireGrower(context, place);
 	const answering = await grower.transaction((trx) => findAnswering(trx, grower.viewer, place));
 	if (!answering) throw refusal("survey_not_found");
-	if (!answering.isOpen) throw refusal("survey_closed");
+	if (!answering.isOpen && !answering.isLate) throw refusal("survey_closed");
 	return { ...answering, holder: holderOf(grower.viewer) };
 }
 

@@ -9,6 +9,7 @@ import { Button } from "#app/components/button.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { LateNotice } from "./late-notice.tsx";
 import { KeptWord, PhonePart, type PhonePage } from "./phone-part.tsx";
 import { photoAddress } from "./photo-address.ts";
 import { useStepTitle } from "#app/components/step-title.ts";
@@ -19,6 +20,7 @@ type ReviewViewProps = {
 	steps: Titled[];
 	closesAt: Date;
 	timeZone: string;
+	isLate?: boolean;
 	/** Whether answers were sent in before, and whether something has changed since. */
 	sent: boolean;
 	changed: boolean;
@@ -34,17 +36,18 @@ export function ReviewView({ groups, steps, refused, place, phone, ...rest }: Re
 	const format = useFormat();
 	const busy = useNavigation().state === "submitting";
 	const titleOf = useStepTitle();
-	const { closesAt, timeZone, sent, changed } = rest;
+	const { closesAt, timeZone, isLate, sent, changed } = rest;
 	const askAddress = (screen: string) =>
 		`${href("/answer/:surveyId/:operationId/ask/:screen", { ...place, screen })}?review`;
 	return (
 		<Page title={t("review.title")} lead={t("review.lead")}>
+			{isLate && <LateNotice />}
 			{refused && <Unfinished steps={steps} {...refused} addressOf={askAddress} />}
 			{sent && !changed && <Notice tone="info">{t("review.alreadySent")}</Notice>}
 			{sent && changed && <Notice tone="attention">{t("review.changedNotSent")}</Notice>}
 			<AnswerList groups={groups} editHref={askAddress} photoHref={photoAddress(place)} />
 			<Form method="post" className="mt-8" data-answering="">
-				<p className="mb-4">{t("review.until", { closes: format.moment(closesAt, timeZone) })}</p>
+				{!isLate && <p className="mb-4">{t("review.until", { closes: format.moment(closesAt, timeZone) })}</p>}
 				<Button busy={busy} data-on="">
 					{t(sent ? "review.sendChanges" : "review.send")}
 				</Button>

@@ -16,6 +16,7 @@ import { ChangedElsewhere } from "./changed-elsewhere.tsx";
 import { CheckNotice } from "./check-notice.tsx";
 import { KeptWord, PhonePart, type PhonePage } from "./phone-part.tsx";
 import { photoAddress } from "./photo-address.ts";
+import { LateNotice } from "./late-notice.tsx";
 import { labelOf, QuestionField } from "./question-field.tsx";
 import { useStepTitle } from "#app/components/step-title.ts";
 import { ScreenUnknown } from "./unknown-boxes.tsx";
@@ -33,7 +34,7 @@ export type PostedScreen = {
 	elsewhere: Difference[] | null;
 };
 type ScreenViewProps = {
-	shown: ShownStep;
+	shown: ShownStep & { isLate?: boolean };
 	/** What was posted and not kept, with why. */
 	posted: PostedScreen | undefined;
 	place: AnswerPlace;
@@ -64,6 +65,7 @@ export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
 				<TallyStrokes done={number - 1} all={of} />
 				<span>{t("screen.progress", { number: format.number(number), of: format.number(of) })}</span>
 			</div>
+			{shown.isLate && <LateNotice />}
 			<ErrorSummary problems={problems} labels={labels} />
 			{/* A screen of its own: boxes of one step must not carry their text into the next. */}
 			<Form

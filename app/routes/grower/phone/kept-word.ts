@@ -41,10 +41,11 @@ function wordFor({ words, labels }: PageData, { step, sending, lasting, twice }:
 		case "refused":
 			return lasting ? words.phone : words.lost;
 		case "waiting":
-			if (sending === undefined || sending === "sent") return words.keeping;
+			if (sending === undefined || sending === "sent" || sending === "late") return words.keeping;
 			if (!lasting) return words.lost;
 			return sending === "session_over" ? words.over : words.phone;
 		default:
+			if (sending === "late") return words.afterClosing;
 			return lasting ? words.kept : `${words.kept} ${words.noRoom}`;
 	}
 }

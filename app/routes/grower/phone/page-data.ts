@@ -38,6 +38,7 @@ export const keptWordKeys = [
 	"seeBoth",
 	"over",
 	"closed",
+	"afterClosing",
 	"noRoom",
 	"lost",
 	"unsent",

@@ -15,7 +15,7 @@ export async function startReviewPage(store: PhoneStore, page: BegunPage, form: 
 	const outcome = hadMore ? await sendWaiting(store, page.responseId, () => {}) : null;
 	await sayUnsettled(store, page);
 	const photos = hadPhotos ? await sendPhotos(store, page.responseId, () => {}) : null;
-	const hasTyped = outcome === "sent" && hasNews(await store.read(page.responseId), page);
+	const hasTyped = (outcome === "sent" || outcome === "late") && hasNews(await store.read(page.responseId), page);
 	if (hasTyped || photos === "sent") location.reload();
 	else await sayUnsettled(store, page);
 }

@@ -1,6 +1,6 @@
 import { brokenPhoto, type PhotoProblem } from "#app/collect/photo.ts";
 import { nextPhoto, type PhotoHere, withoutPhoto, withRefusedPhoto } from "#app/collect/photos-here.ts";
-import { change, type Sending, whyNot } from "./send.ts";
+import { change, type Sending, type Stopped, whyNot } from "./send.ts";
 import type { Held, PhoneStore } from "./store.ts";
 
 /** Bytes of a piece: small enough for one bar of signal, and twice as many each time one was gone within a second. */
@@ -41,7 +41,7 @@ async function sendOne(
 	held: Held,
 	photo: PhotoHere,
 	tell: Tell,
-): Promise<{ problem?: PhotoProblem } | Exclude<Sending, "sent">> {
+): Promise<{ problem?: PhotoProblem } | Stopped> {
 	const picture = await store.readPicture(photo.photoId);
 	// It was in a page that had no room to keep it, and that page is gone: nothing is there to send.
 	if (!picture) return {};

@@ -10,8 +10,11 @@ import {
 } from "#app/collect/outbox.ts";
 import type { Held, PhoneStore } from "./store.ts";
 
-/** How far sending came: "sent" when nothing waits any more. */
-export type Sending = "sent" | "no_signal" | "session_over" | "closed";
+/** How far sending came: "sent" when nothing waits any more, "late" when it was taken after the closing. */
+export type Sending = "sent" | "late" | "no_signal" | "session_over" | "closed";
+
+/** Why sending ended before all was sent. */
+export type Stopped = Exclude<Sending, "sent" | "late">;
 
 /**
  * Sends what waits, step by step in the order of typing, until nothing does or it cannot go on. Only one page of the phone
@@ -23,16 +26,18 @@ export function sendWaiting(store: PhoneStore, responseId: string, tell: (held: 
 }
 
 async function sendInTurn(store: PhoneStore, responseId: string, tell: (held: Held) => void): Promise<Sending> {
+	let done: Sending = "sent";
 	for (;;) {
 		const held = await store.read(responseId);
 		const stepKey = held && nextToSend(held.outbox);
-		if (!held || stepKey === undefined) return "sent";
+		if (!held || stepKey === undefined) return done;
 		const marked = await change(store, responseId, (outbox) => sending(outbox, stepKey));
 		const step = marked && typedStep(marked.outbox, stepKey);
-		if (!step) return "sent";
+		if (!step) return done;
 		tell(marked);
 		const reply = await post(held, stepKey, step);
 		if (typeof reply === "string" && reply !== "refused") return reply;
+		if (reply !== "refused" && reply.late) done = "late";
 		const next = await change(store, responseId, (outbox) =>
 			reply === "refused" ? refused(outbox, stepKey, step.changeId) : answered(outbox, stepKey, step.changeId, reply),
 		);
@@ -44,11 +49,7 @@ export function change(store: PhoneStore, responseId: string, next: (outbox: Hel
 	return store.change(responseId, (held) => held && { ...held, outbox: next(held.outbox) });
 }
 
-async function post(
-	held: Held,
-	stepKey: string,
-	step: TypedStep,
-): Promise<KeptAnswer | "refused" | Exclude<Sending, "sent">> {
+async function post(held: Held, stepKey: string, step: TypedStep): Promise<KeptAnswer | "refused" | Stopped> {
 	const response = await postStep(held, stepKey, step).catch(() => null);
 	switch (response?.status) {
 		case 200:
@@ -61,7 +62,7 @@ async function post(
 }
 
 /** Why the server did not take what was sent. "refused": it never will. */
-export async function whyNot(response: Response | null | undefined): Promise<"refused" | Exclude<Sending, "sent">> {
+export async function whyNot(response: Response | null | undefined): Promise<"refused" | Stopped> {
 	switch (response?.status) {
 		case 401:
 			return "session_over";
