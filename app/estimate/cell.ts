@@ -1,6 +1,10 @@
-import type { Moments } from "#app/lib/moments.ts";
-import type { Tally } from "#app/tally/tally.ts";
-import { domainDegreesOfFreedom, domainStrata, domainTotals, type DomainStratum } from "#app/estimate/domain.ts";
+import {
+	domainDegreesOfFreedom,
+	domainStrata,
+	domainTotals,
+	type DomainStratum,
+	type StratumTally,
+} from "#app/estimate/domain.ts";
 import { estimateOf, type Figure } from "#app/estimate/estimators.ts";
 import { exactInterval, logitInterval, normalInterval, type Interval } from "#app/estimate/interval.ts";
 import { linearize, type EstimateKind } from "#app/estimate/linearize.ts";
@@ -44,7 +48,7 @@ export type Estimate = {
 export function estimateCell(
 	measure: EstimatedMeasure,
 	frame: StrataFrame,
-	tallies: Iterable<Moments & Pick<Tally, "stratumKey">>,
+	tallies: Iterable<StratumTally>,
 	cutOffs?: SteadinessCutOffs,
 ): Estimate {
 	const rows = [...tallies].filter((tally) => tally.n > 0);

@@ -19,6 +19,9 @@ export type DomainStratum = {
 /** Sums over operations of the domain that share one weight. */
 export type WeightedMoments = Pick<DomainStratum, "weight" | "domain">;
 
+/** What of a tally row the strata need. */
+export type StratumTally = Moments & Pick<Tally, "stratumKey">;
+
 /** Weighted count and totals of a domain, with its plain count of respondents. */
 export type DomainTotals = { respondents: number; count: number; totalY: number; totalX: number };
 
@@ -29,10 +32,7 @@ export type DomainTotals = { respondents: number; count: number; totalY: number;
  * @returns every stratum that has respondents, also those with nobody in the area.
  * @throws {RangeError} when a tally's stratum is not in the frame, or the area has more respondents than the stratum.
  */
-export function domainStrata(
-	frame: StrataFrame,
-	tallies: Iterable<Moments & Pick<Tally, "stratumKey">>,
-): DomainStratum[] {
+export function domainStrata(frame: StrataFrame, tallies: Iterable<StratumTally>): DomainStratum[] {
 	const place = new Map(frame.strata.flatMap((stratum, i) => stratum.stratumKeys.map((key) => [key, i] as const)));
 	const inside: Moments[] = frame.strata.map(() => emptyMoments);
 	for (const tally of tallies) {

@@ -1,7 +1,7 @@
 import * as fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { logitInterval } from "#app/estimate/interval.ts";
-import { quantileEstimate } from "#app/estimate/quantile.ts";
+import { histogramStrata, quantileEstimate } from "#app/estimate/quantile.ts";
 
 /** A stratum of four times as many operations as answered, one answer for each day given. */
 function stratum(days: number[], respondents = days.length) {
@@ -72,4 +72,27 @@ describe("a weighted quantile", () => {
 			),
 		);
 	});
+});
+
+test("an area's histograms are its part of each joined stratum", () => {
+	const frame = {
+		strata: [
+			{ stratumKeys: ["small"], frameSize: 40, respondents: 10 },
+			{ stratumKeys: ["middle", "large"], frameSize: 9, respondents: 3 },
+			{ stratumKeys: ["empty"], frameSize: 0, respondents: 0 },
+		],
+		joins: [],
+	};
+	const [early, late] = [[{ value: 110, n: 2 }], [{ value: 120, n: 1 }]];
+	const strata = histogramStrata(frame, [
+		{ stratumKey: "middle", days: early },
+		{ stratumKey: "large", days: late },
+		{ stratumKey: "large", days: null },
+	]);
+	expect(strata).toEqual([
+		{ weight: 4, samplingFraction: 0.25, respondents: 10, counts: [] },
+		{ weight: 3, samplingFraction: 1 / 3, respondents: 3, counts: [...early, ...late] },
+	]);
+	expect(quantileEstimate(strata, 0.5)?.value).toBe(110);
+	expect(() => histogramStrata(frame, [{ stratumKey: "elsewhere", days: early }])).toThrow(RangeError);
 });

@@ -1,12 +1,33 @@
 import { domainDegreesOfFreedom, type DomainStratum } from "#app/estimate/domain.ts";
 import { ratioEstimate, type Figure } from "#app/estimate/estimators.ts";
 import { tQuantile } from "#app/estimate/distributions.ts";
+import type { StrataFrame } from "#app/estimate/strata.ts";
 import { tInterval, type Interval } from "#app/estimate/interval.ts";
 
 /** One stratum's answers in the domain as counts by value: a day measure's histogram by day of year. */
 export type HistogramStratum = Pick<DomainStratum, "weight" | "samplingFraction" | "respondents"> & {
 	counts: readonly { value: number; n: number }[];
 };
+
+/** An area's tally row of a measure of days, as far as quantiles need it. */
+export type DayTally = { stratumKey: string; days: readonly { value: number; n: number }[] | null };
+
+/**
+ * The joined strata of a measure and crop seen from an area, as counts by day.
+ * @returns every stratum that has respondents, also those with nobody in the area.
+ * @throws {RangeError} when a row's stratum is not in the frame.
+ */
+export function histogramStrata(frame: StrataFrame, rows: readonly DayTally[]): HistogramStratum[] {
+	const known = new Set(frame.strata.flatMap(({ stratumKeys }) => stratumKeys));
+	const stray = rows.find(({ stratumKey }) => !known.has(stratumKey));
+	if (stray) throw new RangeError(`stratum ${stray.stratumKey} has a tally but is not in the frame`);
+	return frame.strata.flatMap(({ stratumKeys, frameSize, respondents }) => {
+		if (respondents === 0) return [];
+		const own = rows.filter(({ stratumKey }) => stratumKeys.includes(stratumKey));
+		const counts = own.flatMap(({ days }) => days ?? []);
+		return [{ weight: frameSize / respondents, samplingFraction: respondents / frameSize, respondents, counts }];
+	});
+}
 
 /**
  * What to do when a share p of the weight ends exactly between two values: `lower` takes the value before (so that a

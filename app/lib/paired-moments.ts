@@ -41,8 +41,8 @@ export const emptyPairedMoments: PairedMoments = Object.freeze({
 export function addPairedMoments(a: PairedMoments, b: PairedMoments): PairedMoments {
 	requirePaired(a);
 	requirePaired(b);
-	if (a.n === 0) return { ...b };
-	if (b.n === 0) return { ...a };
+	if (a.n === 0) return pick(b);
+	if (b.n === 0) return pick(a);
 	const n = a.n + b.n;
 	const share = a.n * (b.n / n);
 	const gap = (sum: "sumYBefore" | "sumXBefore" | "sumYNow" | "sumXNow") => gapOfMeans(a.n, a[sum], b.n, b[sum]);
@@ -85,7 +85,12 @@ export function pairedMomentsOf(operations: Iterable<PairedAnswers>): PairedMome
 	return moments;
 }
 
-function requirePaired(moments: PairedMoments): void {
+function pick({ n, sumYBefore, sumXBefore, sumYNow, sumXNow, mYY, mYX, mXY, mXX }: PairedMoments): PairedMoments {
+	return { n, sumYBefore, sumXBefore, sumYNow, sumXNow, mYY, mYX, mXY, mXX };
+}
+
+function requirePaired(row: PairedMoments): void {
+	const moments = pick(row);
 	if (!Number.isInteger(moments.n) || moments.n < 0)
 		throw new RangeError(`moments cannot be of ${moments.n} operations`);
 	if (!Object.values(moments).every(Number.isFinite)) throw new RangeError("sums and moments must be finite");

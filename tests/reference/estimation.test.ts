@@ -2,7 +2,7 @@ import { join } from "node:path";
 import { describe, expect, test } from "vitest";
 import { joinStrata } from "#app/estimate/strata.ts";
 import { readCsv } from "#tests/reference/checking.ts";
-import { groupBy } from "#tests/reference/estimation/design.ts";
+import { groupBy } from "#app/lib/group-by.ts";
 import { checkers } from "#tests/reference/verify/estimation.ts";
 
 // Sources, tools and versions of each file: tests/reference/data/estimation/SOURCES.md.

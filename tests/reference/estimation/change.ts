@@ -1,3 +1,4 @@
+import { groupBy } from "#app/lib/group-by.ts";
 import { momentsOf } from "#app/lib/moments.ts";
 import { pairedMomentsOf, type PairedAnswers } from "#app/lib/paired-moments.ts";
 import { changeEstimate, type TwoSeasonStratum } from "#app/estimate/change.ts";
@@ -10,7 +11,7 @@ import {
 	type Comparison,
 	type Row,
 } from "#tests/reference/checking.ts";
-import { groupBy, type Domain } from "#tests/reference/estimation/design.ts";
+import { type Domain } from "#tests/reference/estimation/design.ts";
 
 /**
  * Change of totals and ratios between two seasons by domain, from sums by stratum alone. `b_fpc` is what ships; `b_nofpc`

@@ -10,7 +10,7 @@ import {
 	type Comparison,
 	type Row,
 } from "#tests/reference/checking.ts";
-import { groupBy } from "#tests/reference/estimation/design.ts";
+import { groupBy } from "#app/lib/group-by.ts";
 
 const rules: Record<string, QuantileRule> = { math: "lower", school: "midpoint", hf2: "midpoint" };
 

@@ -1,3 +1,4 @@
+import { groupBy } from "#app/lib/group-by.ts";
 import { momentsOf } from "#app/lib/moments.ts";
 import type { DomainStratum } from "#app/estimate/domain.ts";
 import type { HistogramStratum } from "#app/estimate/quantile.ts";
@@ -76,15 +77,4 @@ export function histogramOf(design: Design, domain: Domain, y: Quantity): Histog
 		respondents: rows.length,
 		counts: rows.filter(domain).map((row) => ({ value: y(row), n: 1 })),
 	}));
-}
-
-export function groupBy<Item>(items: Iterable<Item>, keyOf: (item: Item) => string): Map<string, Item[]> {
-	const groups = new Map<string, Item[]>();
-	for (const item of items) {
-		const key = keyOf(item);
-		const group = groups.get(key);
-		if (group) group.push(item);
-		else groups.set(key, [item]);
-	}
-	return groups;
 }

@@ -1,3 +1,4 @@
+import { groupBy } from "#app/lib/group-by.ts";
 import { designDegreesOfFreedom, domainDegreesOfFreedom, domainTotals } from "#app/estimate/domain.ts";
 import {
 	meanEstimate,
@@ -20,7 +21,7 @@ import {
 	type Comparison,
 	type Row,
 } from "#tests/reference/checking.ts";
-import { column, everyone, groupBy, seenFrom, type Design, type Domain } from "#tests/reference/estimation/design.ts";
+import { column, everyone, seenFrom, type Design, type Domain } from "#tests/reference/estimation/design.ts";
 import { calibrated, rowsOf, sampleOf } from "#tests/reference/estimation/estimating.ts";
 import { compareFigure, compareProportion, compareQuantiles, type Node } from "#tests/reference/estimation/figures.ts";
 import { isRefused, loneRules } from "#tests/reference/estimation/lone.ts";
