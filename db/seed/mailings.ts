@@ -16,7 +16,15 @@ export async function fillMailings(trx: Trx, associate: Associate, season: Seaso
 	await sendReceipts(trx, surveyId);
 	await note(trx, associate, surveyId, "survey.invited", openedAt);
 	for (const at of sent) await note(trx, associate, surveyId, "survey.reminded", at);
-	if (!season.closedAt) await linkInvitations(trx, season);
+	if (season.closedAt) return;
+	await linkInvitations(trx, season);
+	await markReturned(trx, season);
+}
+
+/** Addresses that took no mail this season are still to be mended; those of earlier ones have been. */
+async function markReturned(trx: Trx, { surveyId }: Season): Promise<void> {
+	await sql`update directory.operation o set mail_returned_at = m.failed_at from collect.mailing m
+		where m.survey_id = ${surveyId} and m.operation_id = o.operation_id and m.failure = 'returned'`.execute(trx);
 }
 
 /** The seed has no right to the queue: the worker sets all alarms when it starts. */
