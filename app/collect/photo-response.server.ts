@@ -2,8 +2,9 @@ import { createHash } from "node:crypto";
 import { readPhoto } from "./photo-files.server.ts";
 
 /**
- * A photo's picture as an answer to who may see it: never a page or a script, whatever its bytes are, and asked about again
- * each time, so that it is gone from every screen when it is gone here. `?size=small` gives the small one.
+ * A photo's picture as an answer to who may see it: never a page or a script, whatever its bytes are (only the browser's own
+ * style fits it to the window), and asked about again each time, so that it is gone from every screen when it is gone here.
+ * `?size=small` gives the small one.
  * @returns undefined where the file is not there.
  */
 export async function photoResponse(folder: string, fileName: string, request: Request): Promise<Response | undefined> {
@@ -13,7 +14,7 @@ export async function photoResponse(folder: string, fileName: string, request: R
 		"content-type": "image/jpeg",
 		"x-content-type-options": "nosniff",
 		"content-disposition": 'inline; filename="photo.jpg"',
-		"content-security-policy": "default-src 'none'; sandbox",
+		"content-security-policy": "default-src 'none'; style-src 'unsafe-inline'",
 		"cross-origin-resource-policy": "same-origin",
 		"cache-control": "private, no-cache",
 		etag,

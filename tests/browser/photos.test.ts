@@ -104,6 +104,8 @@ describe("with scripts", () => {
 			if (request.method() === "POST" && request.url().includes("/photos/"))
 				sent.push(request.postDataBuffer()?.length ?? 0);
 		});
+		expect(await page.getByLabel("Take a photo").getAttribute("capture")).toBe("environment");
+		expect((await page.getByText("Take a photo").boundingBox())!.height).toBeGreaterThanOrEqual(44);
 		const file = await photo("north block.jpg");
 		await box(page).setInputFiles([file, await photo("south block.jpg", 20)]);
 		await expect

@@ -1,7 +1,8 @@
 import { useTranslation } from "react-i18next";
 import type { Question } from "#app/collect/form.ts";
 import { mostPhotoBytes, mostPhotos } from "#app/collect/photo.ts";
-import { Button } from "#app/components/button.tsx";
+import { Button, buttonClasses } from "#app/components/button.tsx";
+import { classes } from "#app/components/classes.ts";
 import { Confirm } from "#app/components/confirm.tsx";
 import { FieldFrame, FieldHelp, fieldId, LabelText } from "#app/components/field-frame.tsx";
 import { PhotoLink } from "#app/components/photo-list.tsx";
@@ -57,11 +58,19 @@ export function PhotoField({ question, photoIds, problems, hrefOf }: PhotoFieldP
 
 type PhotoBoxProps = { name: string; id: string; label: string; camera?: boolean };
 
-/** A box for files; that for the camera only where there is likely one. What scripts took from it, it no longer names. */
+/**
+ * A box for files; that for the camera only where there is likely one. Browsers name its button in their own language, so
+ * that with scripts, which say themselves what was chosen, its label is the button.
+ */
 function PhotoBox({ name, id, label, camera }: PhotoBoxProps) {
 	return (
-		<div className={camera ? "hidden pointer-coarse:block" : undefined}>
-			<label htmlFor={id} className="block">
+		<div
+			className={classes(
+				"relative w-fit rounded-plat has-focus-visible:shadow-[0_0_0_6px_var(--color-ink)] has-focus-visible:outline-3 has-focus-visible:outline-quince",
+				camera && "hidden any-pointer-coarse:block",
+			)}
+		>
+			<label htmlFor={id} className="block" data-button={buttonClasses({ kind: "secondary" })}>
 				{label}
 			</label>
 			<input
@@ -72,7 +81,7 @@ function PhotoBox({ name, id, label, camera }: PhotoBoxProps) {
 				capture={camera ? "environment" : undefined}
 				multiple={!camera}
 				aria-describedby={`help-${name} photos-problem`}
-				className={`mt-1 block max-w-full in-data-scripted:text-transparent ${fileButton}`}
+				className={`mt-1 block max-w-full in-data-scripted:sr-only ${fileButton}`}
 			/>
 		</div>
 	);

@@ -33,6 +33,8 @@ export async function startPhotoPage(ask: AskPage): Promise<void> {
 	const { words, questionKey } = JSON.parse(place.dataset.words) as { words: PhotoWords; questionKey: string };
 	const page: PhotoPage = { ask, words, questionKey, shown: [], sending: "sent", turn: Promise.resolve(), busy: 0 };
 	ask.form.dataset.scripted = "";
+	for (const label of ask.form.querySelectorAll<HTMLElement>("label[data-button]"))
+		label.className = label.dataset.button ?? "";
 	await showHeld(page);
 	listen(page);
 	void send(page);
