@@ -23,6 +23,18 @@ export function* faultsOf(form: Form): Generator<Fault> {
 		if (question.condition) yield* conditionFaults(question.condition, asked, path, byKey);
 	}
 	for (const [index, measure] of form.measures.entries()) yield* measureFaults(measure, ["measures", index], byKey);
+	yield* protectedFaults(form.measures);
+}
+
+function* protectedFaults(measures: Form["measures"]): Generator<Fault> {
+	const bases = new Set(measures.filter(({ base }) => base).map(({ key }) => key));
+	for (const [index, { key, protects = [] }] of measures.entries()) {
+		for (const base of protects.filter((one) => !bases.has(`base.${one}`)))
+			yield {
+				path: ["measures", index, "protects"],
+				message: `measure "${key}" is made of "${base}", which is no base quantity of the form`,
+			};
+	}
 }
 
 function placeQuestions(screens: Screen[]): Placed[] {

@@ -146,6 +146,22 @@ const DayOfYear = z.object({ day: Key, take: z.enum(["earliest", "latest"]).opti
 export const Quantity = z.union([LinearForm, Indicator, One, DayOfYear]);
 export type Quantity = z.infer<typeof Quantity>;
 
+/** The kept unit of a measure's questions, or what one is told in; `count` is a bare number, `day` one of the year. */
+export const MeasureUnit = z.enum([
+	"percent",
+	"percent_of_normal",
+	"lb_per_tree",
+	"lb",
+	"trees",
+	"operations",
+	"score",
+	"acres",
+	"fahrenheit",
+	"row_feet",
+	"count",
+	"day",
+]);
+
 /** What a survey estimates, declared as data: a new measure needs no code. */
 export const Measure = z.object({
 	key: z.string().regex(/^[a-z][a-z0-9_]*(\.[a-z0-9_]+)?$/),
@@ -153,7 +169,7 @@ export const Measure = z.object({
 	kind: z.enum(["ratio", "mean", "total", "proportion", "day"]),
 	label: Words,
 	description: Words,
-	unit: z.enum(["percent", "lb_per_tree", "lb", "trees", "operations", "percent_of_normal", "score"]),
+	unit: MeasureUnit,
 	decimals: z.number().int().min(0).max(6),
 	/** Which direction is bad news, if any; maps and tables say it in words, never by colour alone. */
 	worse: z.enum(["more", "less"]).nullable(),
@@ -172,6 +188,8 @@ export const Measure = z.object({
 	 * as a measure. What the form's measures are made of should be among them.
 	 */
 	base: z.boolean().default(false),
+	/** The base quantities that it is made of, without their "base.": what its cells are withheld by. */
+	protects: z.array(Key).optional(),
 });
 export type Measure = z.infer<typeof Measure>;
 /** A measure that is estimated from sums; one of days is from its histogram. */

@@ -4,7 +4,8 @@ import type { TFunction } from "i18next";
 export type Unit =
 	| ("percent" | "percent_of_normal" | "lb_per_tree" | "lb" | "trees" | "operations" | "score")
 	| ("kg" | "tons" | "bushels" | "half_bushels" | "pecks" | "dry_quarts" | "crates")
-	| ("acres" | "hectares" | "fahrenheit" | "celsius" | "row_feet" | "row_meters" | "tree" | "bush");
+	| ("acres" | "hectares" | "fahrenheit" | "celsius" | "row_feet" | "row_meters" | "tree" | "bush")
+	| ("count" | "day");
 
 /** The locale of numbers and dates. es-US, as Spanish speakers in the states read decimal points and not commas. */
 function localeOf(language: string): "en-US" | "es-US" {

@@ -16,7 +16,10 @@ const ReleaseMeasure = z.object({
 	kind: z.enum(["ratio", "mean", "total", "proportion"]),
 	label: Words,
 	description: Words,
-	unit: z.enum(["percent", "lb_per_tree", "lb", "trees", "operations", "percent_of_normal", "score"]),
+	unit: z.enum([
+		...(["percent", "percent_of_normal", "lb_per_tree", "lb", "trees", "operations", "score"] as const),
+		...(["acres", "fahrenheit", "row_feet", "count", "day"] as const),
+	]),
 	decimals: z.number().int(),
 	worse: z.enum(["more", "less"]).nullable(),
 	hue: z.string(),

@@ -1,7 +1,7 @@
 import type { FormDefinition, Measure, Quantity } from "#app/collect/form.ts";
 import { evaluate } from "#app/lib/condition.ts";
+import { questionsOfMeasure } from "#app/lib/measure-questions.ts";
 import { Answers, type SubmittedResponse } from "./answers.ts";
-import { questionsOfMeasure } from "./measure-questions.ts";
 
 export type Fact = { measureKey: string; cropKey: string; y: number; x: number };
 export type Unanswered = Pick<Fact, "measureKey" | "cropKey">;

@@ -1,8 +1,12 @@
-import type { Measure, Quantity, Term } from "#app/collect/form.ts";
-import { questionsIn } from "#app/lib/condition.ts";
+import { type Condition, questionsIn } from "./condition.ts";
+
+type Share = string | { part: string; whole: string };
+type Term = ({ question: string } | { known: string }) & { share?: Share };
+type Quantity = { terms: Term[] } | { indicator: Condition } | { one: true } | { day: string };
 
 /** The questions whose answers a measure is made of, each once. */
-export function questionsOfMeasure({ numerator, denominator }: Pick<Measure, "numerator" | "denominator">): string[] {
+export function questionsOfMeasure(measure: { numerator: Quantity; denominator: Quantity | null }): string[] {
+	const { numerator, denominator } = measure;
 	return [...new Set([...questionsOfQuantity(numerator), ...(denominator ? questionsOfQuantity(denominator) : [])])];
 }
 
