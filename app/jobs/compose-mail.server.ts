@@ -31,7 +31,7 @@ export async function composeMail(mailing: Mailing, link: string | null): Promis
 			closesAt: mailing.closes_at,
 			timeZone: mailing.time_zone,
 			link: mailing.kind === "thank_you" ? `${env().BASE_URL}/orchard/compare/${mailing.survey_id}` : link,
-			mapLink: `${env().BASE_URL}/map?area=${mailing.county_fips}`,
+			mapLink: `${env().BASE_URL}/map${mailing.county_fips && `?area=${mailing.county_fips}`}`,
 			stopAddress,
 			receipt: receiptOf(mailing),
 		},
