@@ -1,5 +1,6 @@
 import { readFile } from "node:fs/promises";
 import type { Client } from "pg";
+import { median } from "simple-statistics";
 
 /** Milliseconds: by the clock, and of the processor, which others on the machine do not lengthen; null where not told. */
 export type Times = { clock: number; processor: number | null };
@@ -28,12 +29,6 @@ export function medianTimes(times: readonly Times[]): Times {
 		clock: median(times.map(({ clock }) => clock)),
 		processor: processor.every((time) => time !== null) ? median(processor) : null,
 	};
-}
-
-function median(values: readonly number[]): number {
-	const sorted = values.toSorted((a, b) => a - b);
-	const middle = sorted.length >> 1;
-	return sorted.length % 2 === 1 ? sorted[middle]! : (sorted[middle - 1]! + sorted[middle]!) / 2;
 }
 
 /** Times a work of this process. */

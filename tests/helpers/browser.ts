@@ -16,8 +16,11 @@ const flags = [
 export const phone: BrowserContextOptions = { viewport: { width: 375, height: 740 }, hasTouch: true, isMobile: true };
 export const desktop: BrowserContextOptions = { viewport: { width: 1280, height: 900 } };
 
+/** Debian's Chromium, as all tests start it. */
+export const chromiumSettings = { executablePath: process.env.CHROMIUM_PATH ?? "/usr/bin/chromium", args: flags };
+
 export function openBrowser(): Promise<Browser> {
-	return chromium.launch({ executablePath: process.env.CHROMIUM_PATH ?? "/usr/bin/chromium", args: flags });
+	return chromium.launch(chromiumSettings);
 }
 
 /** A page of a person's own: no cookie shared with any other. What its console complains of is kept. */
