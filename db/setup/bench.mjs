@@ -1,4 +1,6 @@
 // npm run bench: measures on a throw-away cluster, or on the one that TEST_... addresses name. JSON lines on stdout.
+import { ensureBuild } from "./build.mjs";
+import { ensureChromium } from "./chromium.mjs";
 import { startCluster, stopCluster } from "./cluster.mjs";
 import { atEnd, end, endOnSignals } from "./end.mjs";
 import { makeLocal } from "./local.mjs";
@@ -25,8 +27,14 @@ try {
 	checkNode();
 	makeLocal();
 	await ensurePackages();
-	const env = { ...process.env, ...(await addresses()) };
-	const args = ["--import", "tsx", "tests/bench/bench.ts", ...process.argv.slice(2)];
+	const wanted = process.argv.slice(2);
+	// Only the pages are measured in a browser.
+	const parts = wanted.filter((word) => !word.startsWith("-"));
+	const looks = parts.length === 0 || parts.includes("pages");
+	if (looks) await ensureBuild();
+	const browser = looks ? { CHROMIUM_PATH: await ensureChromium() } : {};
+	const env = { ...process.env, ...browser, ...(await addresses()) };
+	const args = ["--import", "tsx", "tests/bench/bench.ts", ...wanted];
 	const { code } = await run(process.execPath, args, { env, streams: true, mayFail: true });
 	await end(code);
 } catch (error) {
