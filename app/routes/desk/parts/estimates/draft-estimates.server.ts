@@ -1,0 +1,98 @@
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
+import { isSummed, type SummedMeasure } from "#app/collect/form.ts";
+import { findSurveyForm } from "#app/collect/forms.server.ts";
+import { findSurvey } from "#app/collect/surveys.server.ts";
+import { type Area, listAreas, regionKey } from "#app/directory/areas.server.ts";
+import { type AreasOfCounty, estimateSurvey } from "#app/estimate/survey.ts";
+import { groupBy } from "#app/lib/group-by.ts";
+import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
+import { barScales, chooseRows, pageOf, sortRows } from "./estimate-rows.ts";
+import { type EstimatesQuery, figureSorts } from "./estimates.schema.ts";
+
+/**
+ * All that draft figures of a survey are made from, as far as the viewer's states go. The region, where the viewer holds
+ * several states, is those states together and no more.
+ * @returns undefined for a survey that asks in none of the viewer's states.
+ */
+export async function readDraftInputs(trx: Trx, viewer: Associate, surveyId: string) {
+	const survey = await findSurvey(trx, viewer, surveyId);
+	const definition = survey && (await findSurveyForm(trx, surveyId));
+	if (!definition) return undefined;
+	const held = survey.stateFips.filter((state) => viewer.stateFips.includes(state));
+	const branches = await listAreas(trx, held);
+	const region: Area = { key: regionKey, kind: "region", parentKey: null, stateFips: null, name: "", label: "" };
+	return {
+		survey,
+		held,
+		measures: definition.measures.filter(isSummed).filter((measure) => !measure.base),
+		areas: held.length > 1 ? [region, ...inTreeOrder(branches)] : inTreeOrder(branches),
+		areasOfCounty: pathsOfCounties(branches),
+		frame: await listFrameStrata(trx, surveyId),
+		tallies: await listTallies(trx, surveyId),
+	};
+}
+export type DraftInputs = NonNullable<Awaited<ReturnType<typeof readDraftInputs>>>;
+
+/** The measures that are told of a crop. */
+export function measuresOf(inputs: Pick<DraftInputs, "measures">, cropKey: string): SummedMeasure[] {
+	return inputs.measures.filter((measure) =>
+		cropKey === "all" ? measure.acrossCrops : (measure.crops?.includes(cropKey) ?? true),
+	);
+}
+
+/** The table of a survey's draft figures: what is chosen, sorted, one page of it. */
+export async function listDraftEstimates(trx: Trx, viewer: Associate, surveyId: string, asked: EstimatesQuery) {
+	const inputs = await readDraftInputs(trx, viewer, surveyId);
+	if (!inputs) return undefined;
+	const { survey, held, areas, frame, areasOfCounty } = inputs;
+	const crops = [...(inputs.measures.some((measure) => measure.acrossCrops) ? ["all"] : []), ...survey.cropKeys];
+	const query = settle(asked, inputs, crops);
+	const choices = measuresOf(inputs, query.crop);
+	const measures = choices.filter((measure) => query.measure === "all" || measure.key === query.measure);
+	const tallies = inputs.tallies.filter((tally) => tally.cropKey === query.crop);
+	const { estimates } = estimateSurvey({ measures, frame, tallies, areasOfCounty });
+	const rows = chooseRows(areas, estimates, query);
+	return {
+		query,
+		crops,
+		states: held,
+		measureChoices: choices.map(({ key, label }) => ({ key, label })),
+		measures: measures.map(({ key, label, unit, decimals }) => ({ key, label, unit, decimals })),
+		scales: barScales(rows, measures),
+		statesNotHeld: survey.statesNotHeld,
+		anyAnswer: inputs.tallies.some((tally) => tally.n > 0),
+		...pageOf(sortRows(rows, query), query.page),
+	};
+}
+
+/** What the address asks for and the survey has not falls back to everything. */
+function settle(asked: EstimatesQuery, inputs: DraftInputs, crops: string[]): EstimatesQuery {
+	const crop = crops.includes(asked.crop) ? asked.crop : (crops[0] ?? "all");
+	const keys = measuresOf(inputs, crop).map(({ key }) => key);
+	const measure = keys.includes(asked.measure) ? asked.measure : "all";
+	const sorts = ["area", "respondents", ...(measure === "all" ? keys : figureSorts)];
+	return {
+		...asked,
+		crop,
+		measure,
+		state: inputs.held.includes(asked.state) ? asked.state : "all",
+		sort: sorts.includes(asked.sort) ? asked.sort : "area",
+	};
+}
+
+/** Each state, then each of its districts with its counties below it, then counties of no district. */
+function inTreeOrder(areas: readonly Area[]): Area[] {
+	const below = groupBy(areas, (area) => area.parentKey);
+	const under = (key: string): Area[] => (below.get(key) ?? []).flatMap((area) => [area, ...under(area.key)]);
+	return under(regionKey);
+}
+
+function pathsOfCounties(areas: readonly Area[]): AreasOfCounty {
+	const parentOf = new Map(areas.map((area) => [area.key, area.parentKey]));
+	const pathOf = (key: string): string[] => {
+		const parent = parentOf.get(key);
+		return parent ? [key, ...pathOf(parent)] : [key];
+	};
+	return new Map(areas.filter((area) => area.kind === "county").map((area) => [area.key, pathOf(area.key)]));
+}

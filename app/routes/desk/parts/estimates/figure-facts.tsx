@@ -1,0 +1,65 @@
+import { useTranslation } from "react-i18next";
+import { DescriptionList } from "#app/components/description-list.tsx";
+import { Section } from "#app/components/section.tsx";
+import { useFormat } from "#app/i18n/use-format.ts";
+import { FigureInterval, FigureSteadiness, useSpread } from "./estimate-figure.tsx";
+import type { ToldFigure } from "./figure-origin.server.ts";
+
+/** The figure itself with all that says how sure it is. */
+export function FigureFacts({ told: { origin, measure } }: { told: ToldFigure }) {
+	const { t } = useTranslation("release");
+	const format = useFormat();
+	const spread = useSpread();
+	const { estimate } = origin;
+	if (!estimate || estimate.respondents === 0) return <p className="font-bold">{t("origin.nobody")}</p>;
+	const { value, lower, upper } = estimate;
+	const ends = [0, value ?? 0, lower ?? 0, upper ?? 0];
+	const scale = {
+		lowest: Math.min(...ends),
+		highest: measure.unit === "percent" ? Math.max(100, ...ends) : Math.max(...ends) || 1,
+	};
+	return (
+		<DescriptionList
+			items={[
+				{
+					term: t("origin.value"),
+					detail: (
+						<strong>
+							{value === null ? t("estimates.noBase") : format.quantity(value, measure.unit, measure.decimals)}
+						</strong>
+					),
+				},
+				{ term: t("estimates.interval"), detail: <FigureInterval figure={estimate} measure={measure} scale={scale} /> },
+				{ term: t("estimates.se"), detail: spread.standardError(estimate, measure.decimals) },
+				{ term: t("estimates.cv"), detail: spread.cv(estimate) },
+				{ term: t("estimates.answers"), detail: format.number(estimate.respondents) },
+				{ term: t("estimates.steadiness"), detail: <FigureSteadiness figure={estimate} /> },
+			]}
+		/>
+	);
+}
+
+/** The formula in words, and the two sums that it is of. */
+export function FigureFormula({ told: { origin, measure } }: { told: ToldFigure }) {
+	const { t } = useTranslation("release");
+	const format = useFormat();
+	const { totals } = origin;
+	const quotient = measure.kind === "ratio" || measure.kind === "proportion";
+	return (
+		<Section title={t("origin.formula.title")}>
+			<ol className="ml-5 list-decimal space-y-2 max-w-prose">
+				<li>{t("origin.formula.weight")}</li>
+				<li>{t(`origin.formula.${measure.kind}`)}</li>
+				<li>{t("origin.formula.variance")}</li>
+				<li>{t(measure.kind === "proportion" ? "origin.formula.logit" : "origin.formula.normal")}</li>
+			</ol>
+			<DescriptionList
+				items={[
+					{ term: t("origin.weightedCount"), detail: format.number(totals.count, 1) },
+					{ term: t("origin.weightedY"), detail: format.number(totals.y, 1) },
+					...(quotient ? [{ term: t("origin.weightedX"), detail: format.number(totals.x, 1) }] : []),
+				]}
+			/>
+		</Section>
+	);
+}
