@@ -52,7 +52,7 @@ function useAreaColumns({ level, sort }: EstimatesQuery): Column<EstimateRow>[] 
 				<span className={asTree ? `block ${indents[area.depth]}` : undefined}>
 					<span className={area.depth < 2 ? "font-bold" : undefined}>{area.name || t("estimates.ownStates")}</span>
 					<span className="block text-xs text-quiet">
-						{t(`common:areaKind.${area.kind}`)}
+						{area.kind !== "region" && t(`common:areaKind.${area.kind}`)}
 						{!asTree && area.parentName && `, ${area.parentName}`}
 					</span>
 				</span>
@@ -136,7 +136,7 @@ function FigureLink({ surveyId, figure, measure, areaName }: FigureLinkProps) {
 				cropKey,
 				measureKey,
 			})}
-			className="inline-flex min-h-6 items-center font-bold"
+			className="relative inline-flex min-h-6 items-center font-bold"
 		>
 			{shown}
 			<span className="sr-only">

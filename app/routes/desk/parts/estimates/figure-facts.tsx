@@ -47,7 +47,7 @@ export function FigureFormula({ told: { origin, measure } }: { told: ToldFigure 
 	const quotient = measure.kind === "ratio" || measure.kind === "proportion";
 	return (
 		<Section title={t("origin.formula.title")}>
-			<ol className="ml-5 list-decimal space-y-2 max-w-prose">
+			<ol className="mb-5 ml-5 max-w-prose list-decimal space-y-2">
 				<li>{t("origin.formula.weight")}</li>
 				<li>{t(`origin.formula.${measure.kind}`)}</li>
 				<li>{t("origin.formula.variance")}</li>
