@@ -77,9 +77,12 @@ async function visit(url: string, cookie: string, port: number): Promise<Visit> 
 
 /** Bytes that came over the line for the page itself; the font may follow, and what is fetched for later visits is not waited for. */
 function sizeOf(requests: { details?: unknown } | undefined): number {
-	const { items } = requests?.details as { items: { resourceType: string; transferSize: number }[] };
+	const details = requests?.details as { items: { resourceType: string; transferSize: number }[] } | undefined;
+	if (!details) throw new Error("Lighthouse tells of no requests");
 	const first = new Set(["Document", "Script", "Stylesheet"]);
-	return items.filter(({ resourceType }) => first.has(resourceType)).reduce((sum, item) => sum + item.transferSize, 0);
+	return details.items
+		.filter(({ resourceType }) => first.has(resourceType))
+		.reduce((sum, item) => sum + item.transferSize, 0);
 }
 
 function linesOf(name: string, visits: Visit[]): Line[] {

@@ -7,7 +7,7 @@ import { readStep } from "#app/collect/step-fields.ts";
 import { valuesOf } from "#app/collect/step-values.ts";
 import { answersByPlace, keptAnswers, listAsked } from "#app/collect/steps.ts";
 import type { MassUnit } from "#app/collect/units.ts";
-import { factsOf } from "#app/tally/facts.ts";
+import { factRows } from "#app/tally/facts.server.ts";
 import { surveyOf, useDemo } from "./seed-fixture.ts";
 
 const { rowsOf, numberOf } = useDemo();
@@ -100,11 +100,11 @@ async function sampleOf(size: number): Promise<Sample[]> {
 test("facts are those of the newest submission", async () => {
 	for (const { survey_id, operation_id, definition, sent } of await sampleOf(200)) {
 		const stored = await rowsOf<object>(
-			`select measure_key as "measureKey", crop_key as "cropKey", y, x from collect.fact
-			where survey_id = $1 and operation_id = $2`,
+			`select measure_key, crop_key, y, x, is_day from collect.fact where survey_id = $1 and operation_id = $2`,
 			[survey_id, operation_id],
 		);
-		const wanted = factsOf(definition, sent);
+		// Also of what was asked and not told: a row without figures.
+		const wanted = factRows(definition, sent);
 		expect(stored).toHaveLength(wanted.length);
 		expect(stored).toEqual(expect.arrayContaining(wanted));
 	}
