@@ -85,6 +85,7 @@ export default [
 					route("responses", "routes/desk/responses.tsx"),
 					route("responses/:responseId", "routes/desk/response.tsx"),
 					route("estimates", "routes/desk/estimates.tsx"),
+					route("estimates/compared", "routes/desk/estimates-compared.tsx"),
 					route("estimates/:areaKey/:cropKey/:measureKey", "routes/desk/estimate.tsx"),
 					route("release", "routes/desk/release.tsx"),
 				]),

@@ -1,23 +1,13 @@
 import type { Client } from "pg";
 import { afterAll, beforeAll, beforeEach, describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
-import { openSurvey } from "#app/collect/survey-opening.server.ts";
-import { createSurvey } from "#app/collect/surveys.server.ts";
 import { listDraftEstimates } from "#app/routes/desk/parts/estimates/draft-estimates.server.ts";
 import { EstimatesQuery } from "#app/routes/desk/parts/estimates/estimates.schema.ts";
 import { findFigureOrigin } from "#app/routes/desk/parts/estimates/figure-origin.server.ts";
 import { figureOriginCsv } from "#app/routes/desk/parts/estimates/figure-origin-csv.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
-import {
-	addOperation,
-	addPerson,
-	asDesk,
-	connectOwner,
-	count,
-	draftOf,
-	loadPlaces,
-	useDatabase,
-} from "./surveys-fixture.ts";
+import { iowaTold, surveyOf, wisconsinTold } from "./estimates-fixture.ts";
+import { addPerson, asDesk, connectOwner, count, loadPlaces, useDatabase } from "./surveys-fixture.ts";
 
 let database: Awaited<ReturnType<typeof createTestDatabase>>;
 let owner: Client;
@@ -50,56 +40,6 @@ beforeEach(async () => {
 	await owner.query("update directory.operation set status = 'left' where status = 'active'");
 });
 
-type Told = { state?: "19" | "55"; county?: string; trees?: number; y?: number; x?: number; setAside?: boolean };
-
-/** A survey of apples that is out: an operation for each, those with a y having answered about their crop loss. */
-async function surveyOf(states: string[], told: Told[]): Promise<string> {
-	const operations: (Told & { operationId: string })[] = [];
-	for (const one of told) {
-		const operationId = await addOperation(owner, { state: one.state ?? "19", trees: one.trees ?? 40 });
-		if (one.county)
-			await owner.query("update directory.operation set county_fips = $2 where operation_id = $1", [
-				operationId,
-				one.county,
-			]);
-		operations.push({ ...one, operationId });
-	}
-	const made = await asDesk(both, (trx) => createSurvey(trx, both, draftOf(states)));
-	const { surveyId } = made as { surveyId: string };
-	await asDesk(both, (trx) => openSurvey(trx, both, surveyId));
-	for (const { operationId, y, x, setAside } of operations.filter((one) => one.x !== undefined)) {
-		await owner.query(
-			`insert into collect.fact (survey_id, measure_key, crop_key, operation_id, owner_id, county_fips, state_fips,
-				stratum_key, y, x, set_aside)
-			select survey_id, 'crop_loss', 'apple', operation_id, owner_id, county_fips, state_fips, stratum_key, $3, $4, $5
-			from collect.frame_operation where survey_id = $1 and operation_id = $2`,
-			[surveyId, operationId, y ?? null, y === undefined ? null : x, setAside ?? false],
-		);
-		await owner.query(
-			"update collect.frame_operation set disposition = 'complete' where survey_id = $1 and operation_id = $2",
-			[surveyId, operationId],
-		);
-	}
-	return surveyId;
-}
-
-/** Six small operations and three large ones of Iowa; one large one answered, from the other county. */
-const iowaTold: Told[] = [
-	{ y: 10, x: 100 },
-	{ y: 30, x: 100 },
-	{ y: 20, x: 200 },
-	{ y: 90, x: 100, setAside: true },
-	{ x: 1 },
-	{},
-	{ county: "19113", trees: 2000, y: 500, x: 1000 },
-	{ trees: 2000 },
-	{ trees: 2000 },
-];
-const wisconsinTold: Told[] = [
-	{ state: "55", y: 0, x: 100 },
-	{ state: "55", y: 50, x: 100 },
-];
-
 const list = (viewer: Associate, surveyId: string, query: Record<string, string> = {}) =>
 	asDesk(viewer, (trx) => listDraftEstimates(trx, viewer, surveyId, EstimatesQuery.parse({ crop: "apple", ...query })));
 const origin = (viewer: Associate, surveyId: string, areaKey: string, measureKey = "crop_loss", cropKey = "apple") =>
@@ -111,7 +51,7 @@ const lossOf = (listed: Listed | undefined, areaKey: string) =>
 
 describe("the estimates of a survey", () => {
 	test("are those that one gets by hand, for state, district and county", async () => {
-		const surveyId = await surveyOf(["19"], iowaTold);
+		const surveyId = await surveyOf(owner, both, ["19"], iowaTold);
 		const listed = await list(iowa, surveyId);
 		expect(keysOf(listed)).toEqual(["19", "test-east", "19103", "19113"]);
 		// The lone large answer joins the small ones: N = 9, n = 4, weight 2.25. R = 560/1400; residuals -30, -10, -60, 100.
@@ -126,7 +66,7 @@ describe("the estimates of a survey", () => {
 	});
 
 	test("never make one answer look precise", async () => {
-		const surveyId = await surveyOf(["19"], iowaTold);
+		const surveyId = await surveyOf(owner, both, ["19"], iowaTold);
 		expect(lossOf(await list(iowa, surveyId), "19113")).toMatchObject({
 			value: 50,
 			respondents: 1,
@@ -140,7 +80,7 @@ describe("the estimates of a survey", () => {
 	});
 
 	test("hold the viewer's states and no other, and these together where there are several", async () => {
-		const surveyId = await surveyOf(["19", "55"], [...iowaTold, ...wisconsinTold]);
+		const surveyId = await surveyOf(owner, both, ["19", "55"], [...iowaTold, ...wisconsinTold]);
 		const mine = await list(iowa, surveyId);
 		expect(keysOf(mine)).toEqual(["19", "test-east", "19103", "19113"]);
 		expect(mine).toMatchObject({ states: ["19"], statesNotHeld: ["55"] });
@@ -159,7 +99,7 @@ describe("the estimates of a survey", () => {
 	});
 
 	test("of a survey of other states are not found, though answers are there", async () => {
-		const surveyId = await surveyOf(["19"], iowaTold);
+		const surveyId = await surveyOf(owner, both, ["19"], iowaTold);
 		expect(await list(wisconsin, surveyId)).toBeUndefined();
 		expect(await origin(wisconsin, surveyId, "19")).toBeUndefined();
 		expect(await list(iowa, "' or true")).toBeUndefined();
@@ -167,7 +107,7 @@ describe("the estimates of a survey", () => {
 	});
 
 	test("are narrowed, sorted and paged as the address says, and what it asks wrongly falls back", async () => {
-		const surveyId = await surveyOf(["19", "55"], [...iowaTold, ...wisconsinTold]);
+		const surveyId = await surveyOf(owner, both, ["19", "55"], [...iowaTold, ...wisconsinTold]);
 		const one = { measure: "crop_loss" };
 		expect(keysOf(await list(both, surveyId, { level: "county" }))).toEqual(["19103", "19113", "55025"]);
 		expect(keysOf(await list(both, surveyId, { level: "county", state: "55" }))).toEqual(["55025"]);
@@ -191,7 +131,7 @@ describe("the estimates of a survey", () => {
 	});
 
 	test("are none before anybody answered", async () => {
-		const surveyId = await surveyOf(["19"], [{}, {}]);
+		const surveyId = await surveyOf(owner, both, ["19"], [{}, {}]);
 		expect(await list(iowa, surveyId)).toMatchObject({ rows: [], total: 0, anyAnswer: false });
 		expect((await origin(iowa, surveyId, "19"))?.origin).toMatchObject({
 			estimate: null,
@@ -203,7 +143,7 @@ describe("the estimates of a survey", () => {
 
 describe("how a figure was made", () => {
 	test("tells weights, joined strata, answers set aside and response rates", async () => {
-		const surveyId = await surveyOf(["19"], iowaTold);
+		const surveyId = await surveyOf(owner, both, ["19"], iowaTold);
 		const told = (await origin(iowa, surveyId, "19"))!;
 		expect(told.origin.estimate).toEqual(lossOf(await list(iowa, surveyId), "19"));
 		expect(told.origin.strata).toEqual([
@@ -235,14 +175,14 @@ describe("how a figure was made", () => {
 	});
 
 	test("counts one area's growers only, and keeps the whole stratum's weight", async () => {
-		const surveyId = await surveyOf(["19"], iowaTold);
+		const surveyId = await surveyOf(owner, both, ["19"], iowaTold);
 		const told = (await origin(iowa, surveyId, "19113"))!;
 		expect(told.dispositions).toEqual([{ disposition: "complete", operations: 1, bearingTrees: 2000 }]);
 		expect(told.origin.strata).toMatchObject([{ weight: 2.25, inArea: 1, varianceShare: null }]);
 	});
 
 	test("is not found for what there is not: area, crop, measure, or a county of another state", async () => {
-		const surveyId = await surveyOf(["19", "55"], [...iowaTold, ...wisconsinTold]);
+		const surveyId = await surveyOf(owner, both, ["19", "55"], [...iowaTold, ...wisconsinTold]);
 		expect(await origin(wisconsin, surveyId, "19103")).toBeUndefined();
 		expect(await origin(wisconsin, surveyId, "network")).toBeUndefined();
 		expect(await origin(iowa, surveyId, "99999")).toBeUndefined();
@@ -252,7 +192,7 @@ describe("how a figure was made", () => {
 	});
 
 	test("has every number in its file, unrounded", async () => {
-		const surveyId = await surveyOf(["19"], iowaTold);
+		const surveyId = await surveyOf(owner, both, ["19"], iowaTold);
 		const told = (await origin(iowa, surveyId, "19"))!;
 		const lines = figureOriginCsv(told).split("\r\n");
 		expect(lines[0]).toBe("part,of,item,value");

@@ -3,6 +3,7 @@ import { href, Link } from "react-router";
 import type { Route } from "./+types/estimate";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
+import { useAreaName } from "#app/components/map/area-name.ts";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
@@ -20,10 +21,11 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 export default function Estimate({ loaderData, params }: Route.ComponentProps) {
 	const { measure, cropKey, area } = loaderData;
 	const { t, i18n } = useTranslation("release");
+	const nameArea = useAreaName();
 	const title = t("origin.title", {
 		measure: wordsIn(measure.label, i18n.language),
 		crop: t(`common:crop.${cropKey}`),
-		area: area.label || t("estimates.ownStates"),
+		area: area.name ? nameArea({ ...area, areaName: area.name }) : t("estimates.ownStates"),
 	});
 	return (
 		<>

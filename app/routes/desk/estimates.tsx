@@ -1,4 +1,5 @@
 import { useTranslation } from "react-i18next";
+import { href, Link } from "react-router";
 import type { Route } from "./+types/estimates";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { Notice } from "#app/components/notice.tsx";
@@ -20,7 +21,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 
 /** Draft figures of the viewer's states, made afresh from the answers so far. */
 export default function Estimates({ loaderData, params }: Route.ComponentProps) {
-	const { statesNotHeld, page, pageCount, total } = loaderData;
+	const { statesNotHeld, isClosed, page, pageCount, total } = loaderData;
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	const others = statesNotHeld.map((state) => t(`common:state.${state}`));
@@ -30,6 +31,16 @@ export default function Estimates({ loaderData, params }: Route.ComponentProps) 
 				<p>{t("estimates.markBody")}</p>
 				{others.length > 0 && <p>{t("estimates.othersLeftOut", { states: format.list(others) })}</p>}
 			</Notice>
+			{isClosed && (
+				<p className="mb-4">
+					<Link
+						to={href("/desk/surveys/:surveyId/estimates/compared", params)}
+						className="inline-flex min-h-11 items-center"
+					>
+						{t("estimates.toCompared")}
+					</Link>
+				</p>
+			)}
 			<EstimateFilters {...loaderData} />
 			<EstimateTable {...loaderData} surveyId={params.surveyId} />
 			{total > 0 && <Paging page={page} pageCount={pageCount} total={total} />}

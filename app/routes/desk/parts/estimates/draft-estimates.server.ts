@@ -61,6 +61,7 @@ export async function listDraftEstimates(trx: Trx, viewer: Associate, surveyId: 
 		measures: measures.map(({ key, label, unit, decimals }) => ({ key, label, unit, decimals })),
 		scales: barScales(rows, measures),
 		statesNotHeld: survey.statesNotHeld,
+		isClosed: survey.state === "closed",
 		anyAnswer: inputs.tallies.some((tally) => tally.n > 0),
 		...pageOf(sortRows(rows, query), query.page),
 	};

@@ -21,3 +21,13 @@ export const EstimatesQuery = z.object({
 	page: z.coerce.number().int().min(1).max(100_000).catch(1),
 });
 export type EstimatesQuery = z.infer<typeof EstimatesQuery>;
+
+/** `?crop=&show=&sort=&direction=&page=` of the comparison with a release's draft. */
+export const ComparedQuery = z.object({
+	crop: z.string().max(60).catch("all"),
+	show: z.enum(["changed", "all"]).catch("changed"),
+	sort: z.enum(["area", "difference"]).catch("area"),
+	direction: z.enum(["asc", "desc"]).catch("asc"),
+	page: z.coerce.number().int().min(1).max(100_000).catch(1),
+});
+export type ComparedQuery = z.infer<typeof ComparedQuery>;

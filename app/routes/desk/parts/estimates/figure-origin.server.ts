@@ -23,7 +23,7 @@ export async function findFigureOrigin(trx: Trx, viewer: Associate, place: Figur
 	const { key, label, description, kind, unit, decimals } = measure;
 	return {
 		survey: { title: inputs.survey.title, season: inputs.survey.season, statesNotHeld: inputs.survey.statesNotHeld },
-		area: { key: area.key, kind: area.kind, label: area.label },
+		area: { key: area.key, kind: area.kind, name: area.name, stateFips: area.stateFips },
 		cropKey,
 		measure: { key, label, description, kind, unit, decimals },
 		origin: originOf(inputs, { areaKey, cropKey, measure }),
