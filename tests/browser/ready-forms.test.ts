@@ -110,9 +110,13 @@ test.each(inEach)("the form %s is finished on a phone, in %s", async (form, lang
 	await page.goto(link);
 	await page.getByRole("button", { name: words.open }).click();
 	await page.getByRole("button", { name: words.begin }).click();
-	// The markup of both languages is the same; one of them is looked through.
+	// The markup is the same in both languages and for each planting; it is looked through once.
+	const lookedThrough = new Set<string>();
 	const accessible = async () => {
-		if (language === "es") expect(await axeFindings(page)).toEqual([]);
+		const screen = new URL(page.url()).pathname.replace(/-[\da-f-]{36}$/, "");
+		if (language === "en" || lookedThrough.has(screen)) return;
+		lookedThrough.add(screen);
+		expect(await axeFindings(page)).toEqual([]);
 	};
 	const filled = new Set<string>();
 	const pages: string[] = [];
