@@ -49,7 +49,7 @@ test("an answer is kept at the server as it is given, and the page says so", asy
 	expect(await page.locator("[aria-invalid]").count()).toBe(0);
 	expect(await heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 50 });
 	await page.reload();
-	expect(await page.inputValue("[name=harvested]")).toBe("50 and a bit");
+	await expect.poll(() => page.inputValue("[name=harvested]")).toBe("50 and a bit");
 	expect(page.complaints).toEqual([]);
 });
 
@@ -66,7 +66,7 @@ test("Back, the browser's and the page's own, loses nothing that was typed", asy
 	await page.goBack();
 	await expect.poll(() => heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 62 });
 	await page.goto(grower.ask);
-	expect(await page.inputValue("[name=harvested]")).toBe("62");
+	await expect.poll(() => page.inputValue("[name=harvested]")).toBe("62");
 });
 
 test("without signal it is kept on the phone, also when the window is closed, and sent when signal is back", async () => {
@@ -112,7 +112,7 @@ test("two phones change one screen: each is told, both answers are shown, and on
 	await one.getByRole("link", { name: "Take the other answers" }).click();
 	await expect.poll(() => one.inputValue("[name=harvested]")).toBe("81");
 	await one.reload();
-	expect(await one.inputValue("[name=harvested]")).toBe("81");
+	await expect.poll(() => one.inputValue("[name=harvested]")).toBe("81");
 	expect(await heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 81 });
 });
 
@@ -202,7 +202,7 @@ test("another grower's link on the same phone shows nothing of the first one, wh
 	const other = await openWindow(page.context(), await second.link());
 	await other.locator("form button").last().click();
 	await other.goto(second.ask);
-	expect(await other.inputValue("[name=harvested]")).toBe("");
+	await expect.poll(() => other.inputValue("[name=harvested]")).toBe("");
 	expect(await heldByServer(owner, first.place.surveyId)).toEqual({});
 	await other.goto(await first.link());
 	await other.locator("form button").last().click();
@@ -231,7 +231,7 @@ test("an opened survey is answered to its end without signal, and sent in once w
 	await next();
 	await page.locator("[name=first_harvest]").waitFor();
 	await page.getByRole("link", { name: "Back" }).click();
-	expect(await page.inputValue("[name=cause_freeze]")).toBe("100");
+	await expect.poll(() => page.inputValue("[name=cause_freeze]")).toBe("100");
 	await next();
 	await next();
 	await page.check("[name=bud_set][value=light]");

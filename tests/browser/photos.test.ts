@@ -78,6 +78,8 @@ async function openPhotos(asked: Asked, options: Parameters<typeof openPage>[1] 
 	await page.locator("form button").last().click();
 	await page.waitForURL(addressesOf(asked).survey);
 	await page.goto(addressesOf(asked).photos);
+	// The script that takes photos comes after the page, and brings the camera's button.
+	if (options.javaScriptEnabled !== false) await page.getByText("Take a photo").waitFor();
 	return page;
 }
 
