@@ -66,7 +66,7 @@ function PhotoBox({ name, id, label, camera }: PhotoBoxProps) {
 	return (
 		<div
 			className={classes(
-				"relative w-fit rounded-plat has-focus-visible:shadow-[0_0_0_6px_var(--color-ink)] has-focus-visible:outline-3 has-focus-visible:outline-quince",
+				"relative w-fit max-w-full rounded-plat has-focus-visible:shadow-[0_0_0_6px_var(--color-ink)] has-focus-visible:outline-3 has-focus-visible:outline-quince",
 				camera && "hidden any-pointer-coarse:block",
 			)}
 		>

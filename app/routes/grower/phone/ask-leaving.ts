@@ -95,8 +95,10 @@ function sendAtOnce(ask: AskPage): void {
 	const now = typeInto(ask.held ?? newHeld(page), page.stepKey, typed, mark);
 	const step = typedStep(now.held.outbox, page.stepKey);
 	if (now.outcome !== "typed" || !step) return;
+	// A page that came back as it was left does not know whether another page has sent its earlier change since.
+	const unsure = [...step.unsure, ...(ask.from === null ? [] : [ask.from])];
 	Object.assign(ask, { from: typed.changeId, recorded: text, held: now.held });
-	void postStep(page, page.stepKey, step, true).catch(() => null);
+	void postStep(page, page.stepKey, { ...step, unsure }, true).catch(() => null);
 	void store.change(page.responseId, (held) => typeInto(held ?? newHeld(page), page.stepKey, typed, mark).held);
 }
 
