@@ -9,8 +9,8 @@ import { withdrawAnswer } from "./withdrawal.server.ts";
 
 /**
  * Takes out of what was collected all by which a leaving grower could be known. Answers on which no release rests are
- * withdrawn and emptied; the others lose their free texts. Photos go from all. Surveys that are open count a refusal, and no link works any
- * more. The caller knows that the operation is the viewer's.
+ * withdrawn and emptied, also those that came late beside counted ones; the others lose their free texts. Photos go from
+ * all. Surveys that are open count a refusal, and no link works any more. The caller knows that the operation is the viewer's.
  */
 export async function forgetAnswers(trx: Trx, viewer: Grower, operationId: string): Promise<void> {
 	// Nobody who leaves is named in the log of what follows from it.
@@ -60,36 +60,44 @@ async function countAsRefused(trx: Trx, place: { surveyId: string; operationId: 
 		.execute();
 }
 
+const nothing: Submission = { plantings: [], answers: [] };
+
 async function dropTexts(trx: Trx, responseId: string, keys: string[]): Promise<void> {
+	const isLate = await trimSubmissions(trx, responseId, ({ plantings, answers }, late) =>
+		late ? nothing : { plantings, answers: answers.filter(({ questionKey }) => !keys.includes(questionKey)) },
+	);
+	// The newest answers are then the late ones; what was counted is in its submission.
 	await trx
 		.deleteFrom("collect.answer")
 		.where("response_id", "=", responseId)
-		.where((eb) => eb("question_key", "=", eb.fn.any(eb.val(keys))))
+		.$if(!isLate, (rows) => rows.where((eb) => eb("question_key", "=", eb.fn.any(eb.val(keys)))))
 		.execute();
-	await trimSubmissions(trx, responseId, ({ plantings, answers }) => ({
-		plantings,
-		answers: answers.filter(({ questionKey }) => !keys.includes(questionKey)),
-	}));
 }
 
 async function emptyResponse(trx: Trx, responseId: string): Promise<void> {
 	await trx.deleteFrom("collect.answer").where("response_id", "=", responseId).execute();
-	await trimSubmissions(trx, responseId, () => ({ plantings: [], answers: [] }));
+	await trimSubmissions(trx, responseId, () => nothing);
 }
 
-async function trimSubmissions(trx: Trx, responseId: string, trim: (sent: Submission) => Submission): Promise<void> {
+/** @returns whether any of them came late. */
+async function trimSubmissions(
+	trx: Trx,
+	responseId: string,
+	trim: (sent: Submission, late: boolean) => Submission,
+): Promise<boolean> {
 	const rows = await trx
 		.selectFrom("collect.submission")
-		.select(["version", "answers"])
+		.select(["version", "answers", "late"])
 		.where("response_id", "=", responseId)
 		.execute();
-	for (const { version, answers } of rows) {
+	for (const { version, answers, late } of rows) {
 		await trx
 			.updateTable("collect.submission")
-			.set({ answers: JSON.stringify(trim(answers as Submission)) })
+			.set({ answers: JSON.stringify(trim(answers as Submission, late)) })
 			.where("response_id", "=", responseId)
 			.where("version", "=", version)
 			.execute();
 	}
 	await trx.updateTable("collect.response").set({ step_changes: "{}" }).where("response_id", "=", responseId).execute();
+	return rows.some(({ late }) => late);
 }

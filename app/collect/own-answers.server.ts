@@ -17,7 +17,8 @@ export async function findOwnAnswers(trx: Trx, viewer: Grower, place: AnswerPlac
 	const definition = FormDefinition.parse(asked.definition);
 	const view = await viewSubmissions(trx, definition, response.responseId, { version, withdrawn: true });
 	if (view.shownVersion === null) return undefined;
-	const released = (await listReleased(trx, [place.surveyId])).has(place.surveyId);
+	// A release rests on what was sent in time, never on what came late.
+	const released = response.submittedAt !== null && (await listReleased(trx, [place.surveyId])).has(place.surveyId);
 	return {
 		title,
 		season,

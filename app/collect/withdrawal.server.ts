@@ -25,7 +25,10 @@ export async function withdrawAnswer(trx: Trx, viewer: Grower, place: AnswerPlac
 		.forUpdate()
 		.executeTakeFirst();
 	if (!response?.submitted_at && !response?.late_at) return response?.withdrawn_at ? "already_withdrawn" : "not_sent";
-	if ((await underScope(trx, { kind: "network" }, () => endDrafts(trx, surveyId))) === "released") return "released";
+	// What came late counts in no draft and no release.
+	const isCounted = response.submitted_at !== null;
+	if (isCounted && (await underScope(trx, { kind: "network" }, () => endDrafts(trx, surveyId))) === "released")
+		return "released";
 
 	await markWithdrawn(trx, response.response_id);
 	await erasePhotos(trx, response.response_id);

@@ -4,7 +4,7 @@ import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { createPersonalLink, replacePersonalLinks } from "#app/collect/personal-link.server.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
-import { addPlanting, addSurvey } from "#tests/database/answering-fixture.ts";
+import { addPlanting, addSurvey, closeLongAgo } from "#tests/database/answering-fixture.ts";
 import { addOperation, addPerson, asDesk, connectOwner, count, useDatabase } from "#tests/database/surveys-fixture.ts";
 import { httpVisitor } from "#tests/helpers/http-visitor.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
@@ -233,9 +233,7 @@ test("a survey that closes while it is answered takes what comes as late, and sa
 test("two weeks after the closing a survey takes nothing, says so, and keeps what was saved", async () => {
 	const { visitor, address, surveyId } = await begun();
 	await visitor.post(`${address}/ask/next_year`, { comment: "Before the closing" });
-	await owner.query("update collect.survey set closed_at = now() - interval '15 days' where survey_id = $1", [
-		surveyId,
-	]);
+	await closeLongAgo(owner, surveyId);
 	for (const answer of [
 		await visitor.get(address),
 		await visitor.get(`${address}/review`),

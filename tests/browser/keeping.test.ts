@@ -4,7 +4,7 @@ import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { createPersonalLink } from "#app/collect/personal-link.server.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
-import { askGrower } from "#tests/database/answering-fixture.ts";
+import { askGrower, closeLongAgo } from "#tests/database/answering-fixture.ts";
 import { addPerson, asDesk, connectOwner, count, useDatabase } from "#tests/database/surveys-fixture.ts";
 import { httpVisitor } from "#tests/helpers/http-visitor.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
@@ -132,8 +132,6 @@ test("whoever may not answer keeps nothing, and forged changes are refused", asy
 	expect(await count(owner, answers, [[mine.surveyId, theirs.surveyId]])).toBe(0);
 	await asDesk(associate, (trx) => closeSurvey(trx, associate, mine.surveyId));
 	expect(await kept(mine.visitor.post(mine.keep, typed("1")))).toMatchObject([200, { kept: true, late: true }]);
-	await owner.query("update collect.survey set closed_at = now() - interval '15 days' where survey_id = $1", [
-		mine.surveyId,
-	]);
+	await closeLongAgo(owner, mine.surveyId);
 	expect((await mine.visitor.post(mine.keep, typed("2"))).status).toBe(410);
 });

@@ -3,6 +3,7 @@ import type { Browser } from "playwright-core";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
+import { closeLongAgo } from "#tests/database/answering-fixture.ts";
 import { addPerson, asDesk, connectOwner, count, useDatabase } from "#tests/database/surveys-fixture.ts";
 import { axeFindings, openBrowser } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
@@ -168,13 +169,6 @@ test("a phone without room says what that means, and a full one does not lose wh
 	await expect.poll(() => heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 111 });
 });
 
-/** Closed, and so long ago that late answers are not taken either. */
-async function closeLongAgo(surveyId: string): Promise<void> {
-	await owner.query("update collect.survey set closed_at = now() - interval '15 days' where survey_id = $1", [
-		surveyId,
-	]);
-}
-
 test("a survey that closes while somebody types says so, and takes it as late", async () => {
 	const grower = await asked();
 	const page = await openPhone(browser, grower);
@@ -182,7 +176,7 @@ test("a survey that closes while somebody types says so, and takes it as late", 
 	await page.fill("[name=harvested]", "120");
 	await word(page).getByText("The survey has closed meanwhile, so it counts as late.", { exact: false }).waitFor();
 	expect(await heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 120 });
-	await closeLongAgo(grower.place.surveyId);
+	await closeLongAgo(owner, grower.place.surveyId);
 	await page.fill("[name=harvested]", "121");
 	await word(page).getByText("The survey has closed. What you type now is not kept.").waitFor();
 	expect(await heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 120 });
@@ -297,7 +291,7 @@ test("a survey that closed long before a phone had signal again says what was no
 	await page.context().setOffline(true);
 	await page.fill("[name=harvested]", "140");
 	await word(page).getByText("Kept on this phone", { exact: false }).waitFor();
-	await closeLongAgo(grower.place.surveyId);
+	await closeLongAgo(owner, grower.place.surveyId);
 	await page.close();
 	await page.context().setOffline(false);
 	const again = await openWindow(page.context(), grower.address);

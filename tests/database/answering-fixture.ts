@@ -53,6 +53,13 @@ export async function addSurvey(associate: Associate, open = true, season = 2031
 	});
 }
 
+/** Closed, and so long ago that late answers are not taken either. */
+export function closeLongAgo(owner: Client, surveyId: string) {
+	return owner.query("update collect.survey set closed_at = now() - interval '15 days' where survey_id = $1", [
+		surveyId,
+	]);
+}
+
 /** An operation with an apple planting and more, asked by an open survey of its own, which it has begun to answer. */
 export async function askGrower(
 	owner: Client,

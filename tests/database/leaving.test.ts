@@ -185,6 +185,24 @@ test("nothing by which a grower is known is left in any column of any table", as
 	expect(await held(names)).toEqual(Object.fromEntries(Object.keys(names).map((what) => [what, []])));
 });
 
+test("what came late beside counted answers is emptied, for no release rests on it", async () => {
+	const { operationId, viewer, released } = await grower();
+	await asDesk(iowa, (trx) => closeSurvey(trx, iowa, released.surveyId));
+	const [step] = await stepKeysOf(viewer, released);
+	await typeStep(viewer, released, step!, pounds(40, 4000, 4001));
+	expect(await submit(viewer, released)).toMatchObject({ outcome: "submitted", version: 2 });
+	const late = "collect.submission join collect.response using (response_id) where late and survey_id = $1";
+	const told = `${late} and answers @? '$.answers[*] ? (@.value == 4001)'`;
+	expect(await count(owner, told, [released.surveyId])).toBe(1);
+	await go(viewer, operationId);
+	expect(await count(owner, `${late} and answers = '{"answers": [], "plantings": []}'`, [released.surveyId])).toBe(1);
+	const kept = "collect.submission join collect.response using (response_id) where not late and survey_id = $1";
+	const counted = `${kept} and answers @? '$.answers[*] ? (@.value == 4000)'`;
+	expect(await count(owner, counted, [released.surveyId])).toBe(1);
+	const answers = "collect.answer join collect.response using (response_id) where survey_id = $1";
+	expect(await count(owner, answers, [released.surveyId])).toBe(0);
+});
+
 test("answers on which a release rests stay without texts, and all others count nowhere and are empty", async () => {
 	const { operationId, viewer, released, closed, open } = await grower();
 	const before = await sent(released);

@@ -22,7 +22,7 @@ import { sweepPhotos } from "#app/jobs/photos.server.ts";
 import { tasks } from "#app/jobs/tasks.server.ts";
 import { takeAway, takePhoto, takePiece } from "#app/routes/grower/parts/taking-photos.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
-import { answeringOf, asGrower, growerOf, linkOf, submit } from "./answering-fixture.ts";
+import { answeringOf, asGrower, closeLongAgo, growerOf, linkOf, submit } from "./answering-fixture.ts";
 import { accessOf, addPhotoTo, answerAndSubmit, askForPhotos, type Asked, photoOf } from "./photos-fixture.ts";
 import { addPerson, asDesk, connectOwner, count, loadPlaces, useDatabase } from "./surveys-fixture.ts";
 
@@ -86,12 +86,6 @@ const piecewise = (asked: Asked, photoId: string, file: Buffer) => (offset: numb
 		file.subarray(offset, offset + length),
 	);
 
-/** Closed, and so long ago that late answers are not taken either. */
-const closeLongAgo = ({ place }: Asked) =>
-	owner.query("update collect.survey set closed_at = now() - interval '15 days' where survey_id = $1", [
-		place.surveyId,
-	]);
-
 describe("adding", () => {
 	test("a photo is kept with both its pictures, and is the answer to its question", async () => {
 		const asked = await askForPhotos(owner, iowa);
@@ -150,7 +144,7 @@ describe("adding", () => {
 		await asDesk(iowa, (trx) => closeSurvey(trx, iowa, asked.place.surveyId));
 		await add(asked.grower);
 		expect(await rowsOf(asked)).toHaveLength(1);
-		await closeLongAgo(asked);
+		await closeLongAgo(owner, asked.place.surveyId);
 		await expect(add(asked.grower)).rejects.toEqual(refusedWith(410));
 		expect(await rowsOf(asked)).toHaveLength(1);
 	});
@@ -227,7 +221,7 @@ describe("who sees a photo", () => {
 		expect(await own(linkOf({ ...asked.place, surveyId: randomUUID() }), asked.place, photoId)).toBeUndefined();
 		await asDesk(iowa, (trx) => closeSurvey(trx, iowa, asked.place.surveyId));
 		expect(await own(link, asked.place, photoId)).toBeTypeOf("string");
-		await closeLongAgo(asked);
+		await closeLongAgo(owner, asked.place.surveyId);
 		expect(await own(link, asked.place, photoId)).toBeUndefined();
 		expect(await own(asked.grower, asked.place, photoId)).toBeTypeOf("string");
 	});

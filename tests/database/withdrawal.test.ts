@@ -4,6 +4,7 @@ import type { Associate } from "#app/auth/viewer.ts";
 import { findOwnAnswers } from "#app/collect/own-answers.server.ts";
 import { findResponse } from "#app/collect/response-view.server.ts";
 import type { AnswerPlace } from "#app/collect/responses.server.ts";
+import { closeSurvey } from "#app/collect/survey-opening.server.ts";
 import { listReleased, withdrawAnswer } from "#app/collect/withdrawal.server.ts";
 import { writeFacts } from "#app/tally/facts.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
@@ -144,6 +145,19 @@ test("a release that waits is to be drafted anew, and one that is published keep
 	expect(await withdraw(other.place.operationId, other.place)).toBe("released");
 	expect(await standing(other.place)).toEqual(before);
 	expect(await statusOf(published)).toBe("approved");
+});
+
+test("what came after the closing can be withdrawn whatever is released, and ends no draft", async () => {
+	const { place, grower, step } = await askGrower(owner, associate);
+	await typeStep(grower, place, step, pounds(40, 4000, 4000));
+	await asDesk(associate, (trx) => closeSurvey(trx, associate, place.surveyId));
+	expect(await submit(grower, place)).toMatchObject({ outcome: "submitted" });
+	const waiting = await addDraft(place.surveyId, "audited");
+	await addDraft(place.surveyId, "approved");
+	expect(await ownAnswers(place.operationId, place)).toMatchObject({ withdrawal: "possible" });
+	expect(await withdraw(place.operationId, place)).toBe("withdrawn");
+	expect(await statusOf(waiting)).toBe("audited");
+	expect(await standing(place)).toMatchObject({ withdrawn: true, receipt_code: null, counted: 0 });
 });
 
 test("asking what is released leaves a grower as unable to see a draft as before", async () => {
