@@ -217,6 +217,9 @@ test("names and notes with markup are shown as they were typed", async () => {
 test("a survey that closes while it is answered takes what comes as late, and says so", async () => {
 	const { visitor, address, surveyId, first } = await begun();
 	await asDesk(associate, (trx) => closeSurvey(trx, associate, surveyId));
+	const start = await visitor.get(address);
+	expect(start.text).toContain("This survey has closed");
+	expect(start.text).not.toContain("change your answers until");
 	const screen = await visitor.get(first);
 	expect(screen.text).toContain("This survey has closed");
 	const planting = { bearing_trees: "40", normal_crop: "800 lb", harvested: "800 lb" };

@@ -15,6 +15,7 @@ import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { getAnswering } from "./parts/answering.server.ts";
+import { LateNotice } from "./parts/late-notice.tsx";
 import { PhonePart } from "./parts/phone-part.tsx";
 import { phonePart } from "./parts/phone.server.ts";
 import { Pledge } from "./parts/pledge.tsx";
@@ -30,6 +31,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		season: answering.season,
 		operationName: answering.operationName,
 		closesAt: answering.closesAt,
+		isLate: answering.isLate,
 		timeZone: answering.timeZone,
 		minutes: definition.minutes,
 		steps: listSteps(definition, plantings, answers).length,
@@ -58,11 +60,13 @@ export async function action({ context, params }: Route.ActionArgs) {
 export default function Start({ loaderData, params }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("grower");
 	const format = useFormat();
-	const { title, season, operationName, closesAt, timeZone, minutes, steps, begun, receiptCode, openStep } = loaderData;
+	const { title, season, operationName, closesAt, isLate, timeZone, minutes, steps, begun, receiptCode, openStep } =
+		loaderData;
 	const values = { survey: wordsIn(title, i18n.language), season, operation: operationName };
 	return (
 		<Page title={t("start.title", values)} lead={t("start.lead", values)}>
-			{receiptCode && (
+			{isLate && <LateNotice />}
+			{receiptCode && !isLate && (
 				<Notice tone="info" title={t("start.sentTitle")}>
 					<p>{t("start.sent", { code: receiptCode, closes: format.moment(closesAt, timeZone) })}</p>
 				</Notice>
@@ -71,7 +75,7 @@ export default function Start({ loaderData, params }: Route.ComponentProps) {
 				{t("start.steps", { count: steps, value: format.number(steps) })}{" "}
 				{t("start.minutes", { count: minutes, value: format.number(minutes) })}
 			</p>
-			<p className="mt-3">{t("start.until", { closes: format.moment(closesAt, timeZone) })}</p>
+			{!isLate && <p className="mt-3">{t("start.until", { closes: format.moment(closesAt, timeZone) })}</p>}
 			<Section title={t("pledge.title")}>
 				<Pledge />
 			</Section>
