@@ -1,4 +1,63 @@
+import type { OwnCell } from "./levels.ts";
 import type { ProtectionTable } from "./table.ts";
+
+/**
+ * Someone who may try to work out withheld cells, told as what they know beyond the shown cells, the equations and that
+ * nothing is negative. The chooser and whoever audits test each attacker of a list alike, so that a new kind of attacker
+ * is one more function that makes such a list. All values are absolute, in units of the quantity; cells are positions
+ * in the table. What everybody knows (a public bound) belongs to every attacker of the list, `everybody` among them.
+ */
+export interface Attacker {
+	/** For messages on the desk, such as `everybody` or an owner's key. */
+	name: string;
+	/** Cells whose value this attacker knows in every quantity, withheld or not. */
+	knows: readonly number[];
+	/** Tighter than 0 and no upper end; the true value lies between. */
+	bounds?: readonly { cell: number; quantity: string; lower: number; upper: number }[];
+	/** lower <= sum of factor x value <= upper, such as a sum that an earlier release has shown; the truth fits. */
+	relations?: readonly {
+		quantity: string;
+		cells: readonly number[];
+		factors: readonly number[];
+		lower: number;
+		upper: number;
+	}[];
+	/**
+	 * How far above (1) or below (-1) its value this own cell must still seem possible to this attacker; 0 asks nothing.
+	 * Below the value it is at most the value itself.
+	 */
+	asks(own: OwnCell, quantity: string, direction: 1 | -1): number;
+}
+
+/** Who knows nothing but what is shown. */
+export function everybody(table: ProtectionTable): Attacker {
+	return {
+		name: "everybody",
+		knows: [],
+		asks: (own, quantity, direction) => levelOf(table, own, quantity, direction),
+	};
+}
+
+/**
+ * Each owner who is alone in some cell. An own cell that its single owner knows is not protected from that owner; where
+ * the owner has a part in the cell, only the upper side is asked: the level counts that owner's part as known already.
+ */
+export function soleOwners(table: ProtectionTable): Attacker[] {
+	return [...soleHoldings(table)].map(([name, knows]) => ({
+		name,
+		knows,
+		asks: (own, quantity, direction) => {
+			if (knows.includes(own.index)) return 0;
+			if (direction < 0 && knows.some((cell) => liesInside(table, cell, own.index))) return 0;
+			return levelOf(table, own, quantity, direction);
+		},
+	}));
+}
+
+function levelOf(table: ProtectionTable, own: OwnCell, quantity: string, direction: 1 | -1): number {
+	const level = own.levels[quantity]!;
+	return direction > 0 ? level : Math.min(level, table.cells[own.index]!.quantities[quantity]!.total);
+}
 
 /** owner -> cells in which this owner is the only one, and whose values this owner therefore knows */
 export function soleHoldings(table: ProtectionTable): Map<string, number[]> {
