@@ -88,6 +88,18 @@ export interface CollectAnswer {
   value: Json | null;
 }
 
+export interface CollectContact {
+  contact_id: Generated<string>;
+  made_at: Generated<Timestamp>;
+  next_on: string | null;
+  note: Generated<string>;
+  operation_id: string;
+  outcome: string;
+  person_id: string;
+  survey_id: string | null;
+  way: string;
+}
+
 export interface CollectFact {
   county_fips: string;
   crop_key: string;
@@ -298,10 +310,60 @@ export interface DirectoryCrop {
   position: number;
 }
 
+export interface DirectoryDistinctPair {
+  operation_id: string;
+  other_id: string;
+  said_at: Generated<Timestamp>;
+  said_by: string;
+}
+
 export interface DirectoryDistrict {
   district_key: string;
   name: string;
   state_fips: string;
+}
+
+export interface DirectoryImport {
+  choices: Json | null;
+  counts: Json | null;
+  created_at: Generated<Timestamp>;
+  done: Generated<number>;
+  failure: Json | null;
+  file: Buffer | null;
+  file_name: string;
+  header: Json | null;
+  import_id: Generated<string>;
+  imported_at: Timestamp | null;
+  person_id: string;
+  state_fips: string[];
+  status: Generated<string>;
+  total: Generated<number>;
+  touched_at: Generated<Timestamp>;
+  undone_at: Timestamp | null;
+  undone_by: string | null;
+}
+
+export interface DirectoryImportRow {
+  cells: Json | null;
+  choice: string | null;
+  entry: Json | null;
+  first_row: number | null;
+  import_id: string;
+  operation_id: string | null;
+  problems: Generated<Json>;
+  restore: Json | null;
+  row_number: number;
+}
+
+export interface DirectoryMerge {
+  dropped_id: string;
+  merge_id: Generated<string>;
+  merged_at: Generated<Timestamp>;
+  merged_by: string;
+  operation_id: string;
+  restore: Json | null;
+  undone_at: Timestamp | null;
+  undone_by: string | null;
 }
 
 export interface DirectoryOperation {
@@ -314,6 +376,7 @@ export interface DirectoryOperation {
   mail_returned_at: Timestamp | null;
   mail_wanted: Generated<boolean>;
   mass_unit: Generated<string>;
+  merged_into: string | null;
   name: string;
   operation_id: Generated<string>;
   owner_id: string;
@@ -347,6 +410,14 @@ export interface DirectoryPlanting {
   removed_on: string | null;
   trees_told_at: Generated<Timestamp>;
   young_trees: Generated<number>;
+}
+
+export interface DirectorySavedView {
+  name: string;
+  person_id: string;
+  query: Json;
+  saved_at: Generated<Timestamp>;
+  saved_view_id: Generated<string>;
 }
 
 export interface DirectoryState {
@@ -458,6 +529,7 @@ export interface DB {
   "auth.session": AuthSession;
   "auth.tries": AuthTries;
   "collect.answer": CollectAnswer;
+  "collect.contact": CollectContact;
   "collect.fact": CollectFact;
   "collect.form": CollectForm;
   "collect.form_version": CollectFormVersion;
@@ -477,11 +549,16 @@ export interface DB {
   "directory.county": DirectoryCounty;
   "directory.county_neighbor": DirectoryCountyNeighbor;
   "directory.crop": DirectoryCrop;
+  "directory.distinct_pair": DirectoryDistinctPair;
   "directory.district": DirectoryDistrict;
+  "directory.import": DirectoryImport;
+  "directory.import_row": DirectoryImportRow;
+  "directory.merge": DirectoryMerge;
   "directory.operation": DirectoryOperation;
   "directory.operation_pin": DirectoryOperationPin;
   "directory.owner": DirectoryOwner;
   "directory.planting": DirectoryPlanting;
+  "directory.saved_view": DirectorySavedView;
   "directory.state": DirectoryState;
   "log.download": LogDownload;
   "log.event": LogEvent;

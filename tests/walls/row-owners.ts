@@ -7,9 +7,11 @@ export type Holder = {
 	owner_id: string;
 	response_id: string;
 	release_draft_id: string;
+	import_id: string;
 	/** Of a measure that nobody else has facts of, so that its tally is this operation's alone. */
 	measure_key: string;
 };
+type Row = Omit<Holder, "import_id">;
 export type Holders = { iowa: Holder; neighbor: Holder; wisconsin: Holder };
 
 /**
@@ -30,7 +32,16 @@ export async function fillWithHolders(owner: Client): Promise<Holders> {
 		[draftId],
 	);
 	const add = async (state: "19" | "55") => addHolder(owner, surveyId, draftId, state);
-	return { iowa: await add("19"), neighbor: await add("19"), wisconsin: await add("55") };
+	const [iowa, neighbor, wisconsin] = [await add("19"), await add("19"), await add("55")];
+	const work = async (holder: Row, state: string, other: Row) => ({
+		...holder,
+		import_id: await addListWork(owner, personId, state, holder.operation_id, other.operation_id),
+	});
+	return {
+		iowa: await work(iowa, "19", neighbor),
+		neighbor: await work(neighbor, "19", wisconsin),
+		wisconsin: await work(wisconsin, "55", iowa),
+	};
 }
 
 async function addSurvey(owner: Client): Promise<string> {
@@ -44,7 +55,28 @@ async function addSurvey(owner: Client): Promise<string> {
 	);
 }
 
-async function addHolder(owner: Client, surveyId: string, draftId: string, state: "19" | "55"): Promise<Holder> {
+/** What the desk keeps beside the list: a merge with another, a pair that is two, an import with a row, a contact. */
+async function addListWork(owner: Client, personId: string, state: string, operationId: string, otherId: string) {
+	const ids = [operationId, otherId, personId];
+	await owner.query("insert into directory.merge (operation_id, dropped_id, merged_by) values ($1, $2, $3)", ids);
+	await owner.query("insert into directory.distinct_pair (operation_id, other_id, said_by) values ($1, $2, $3)", ids);
+	await owner.query(
+		"insert into collect.contact (operation_id, person_id, way, outcome) values ($1, $2, 'telephone', 'reached')",
+		[operationId, personId],
+	);
+	const importId = await idOf(
+		owner,
+		"insert into directory.import (person_id, state_fips, file_name) values ($1, array[$2], 'list.csv') returning import_id as id",
+		[personId, state],
+	);
+	await owner.query("insert into directory.import_row (import_id, row_number, operation_id) values ($1, 2, $2)", [
+		importId,
+		operationId,
+	]);
+	return importId;
+}
+
+async function addHolder(owner: Client, surveyId: string, draftId: string, state: "19" | "55"): Promise<Row> {
 	const operationId = await addOperation(owner, { state });
 	const ownerId = await idOf(owner, "select owner_id as id from directory.operation where operation_id = $1", [
 		operationId,
