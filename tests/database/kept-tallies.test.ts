@@ -97,8 +97,9 @@ const steps = fc.array(
 
 test("after any history the kept tallies are those of the facts, and equal to a rebuild", async () => {
 	await fc.assert(
-		fc.asyncProperty(steps, async (history) => {
-			const frame = await frameOf(owner, { counties: ["19103", "55025"], strata: ["a", "b"], each: 4 });
+		// First answers are added where each owner has one operation, and tallied anew where an owner has two.
+		fc.asyncProperty(steps, fc.constantFrom(1, 2), async (history, held) => {
+			const frame = await frameOf(owner, { counties: ["19103", "55025"], strata: ["a", "b"], each: 4, held });
 			const facts = new Map<string, Held>();
 			for (const step of history) await live(frame.surveyId, frame.places[step.who]!, step, facts);
 			const now = await kept(frame.surveyId);
@@ -201,6 +202,24 @@ test("the tallies of many places at once are those of one after the other", asyn
 	expect(await kept(surveyId)).toEqual([]);
 });
 
+test("one statement that adds, changes and drops facts tallies each of them once", async () => {
+	const { surveyId, places } = await frameOf(owner, { counties: ["19103"], strata: ["a"], each: 4, held: 1 });
+	await putFact(owner, surveyId, places[0]!, { y: 1, x: 1 });
+	const all = sql`select survey_id, 'loss', 'apple', operation_id, owner_id, county_fips, state_fips, stratum_key, 10, 1
+		from collect.frame_operation where survey_id = ${surveyId}`;
+	const columns = sql`(survey_id, measure_key, crop_key, operation_id, owner_id, county_fips, state_fips, stratum_key, y, x)`;
+	await sql`insert into collect.fact ${columns} ${all}
+		on conflict (survey_id, measure_key, crop_key, operation_id) do update set y = 2`.execute(owner);
+	expect((await kept(surveyId)).map(({ n, sumY, owners }) => [n, sumY, owners])).toEqual([[4, 32, 4]]);
+	const { operationId } = places[3]!;
+	await owner.deleteFrom("collect.fact").where("operation_id", "=", operationId).execute();
+	await sql`with gone as (delete from collect.fact where survey_id = ${surveyId} and y = 2)
+		insert into collect.fact ${columns} ${all} and operation_id = ${operationId}`.execute(owner);
+	const now = await kept(surveyId);
+	expect(now.map(({ n, sumY, owners, secondY }) => [n, sumY, owners, secondY])).toEqual([[3, 30, 3, 10]]);
+	expectEqual(await rebuilt(surveyId), now);
+});
+
 test("values of 1e9 that differ by one keep their spread", async () => {
 	const { surveyId, places } = await frameOf(owner, { counties: ["19103"], strata: ["a"], each: 10 });
 	const facts = places.map((place, at) => ({ place, y: 1e9 + (at % 2), x: 1e9 + at }));
@@ -212,12 +231,20 @@ test("values of 1e9 that differ by one keep their spread", async () => {
 
 test("a measure of days counts each day, and the two largest are owners and not operations", async () => {
 	const { surveyId, places } = await frameOf(owner, { counties: ["19103"], strata: ["a"], each: 6 });
+	const apart = await frameOf(owner, { counties: ["19103"], strata: ["a"], each: 6, held: 1 });
 	const days = [121, 119, 121, 121, 130, 119];
 	for (const [at, place] of places.entries()) {
 		await putFact(owner, surveyId, place, { measure_key: "bloom", y: days[at]!, x: 1, is_day: true });
 		await putFact(owner, surveyId, place, { y: at, x: 1, set_aside: at === 5 });
+		const alone = apart.places[at]!;
+		await putFact(owner, apart.surveyId, alone, { measure_key: "bloom", y: days[at]!, x: 1, is_day: true });
+		await putFact(owner, apart.surveyId, alone, { y: -at, x: 1, set_aside: at === 0 });
 	}
 	const [bloom, loss] = await kept(surveyId);
+	const [bloomApart, lossApart] = await kept(apart.surveyId);
+	expect(bloomApart!.days).toEqual(bloom!.days);
+	// Below nothing, as no form of ours can be: the two largest are still those of owners, and not the 0 of nobody.
+	expect(lossApart).toMatchObject({ n: 5, owners: 5, largestY: -1, secondY: -2, setAside: 1 });
 	expect(bloom!.days).toEqual([
 		{ value: 119, n: 2 },
 		{ value: 121, n: 3 },

@@ -5,17 +5,17 @@ import type { CollectFact, DB } from "#db/schema.ts";
 export type Place = { operationId: string; ownerId: string; countyFips: string; stratumKey: string };
 export type TestFact = Partial<Insertable<CollectFact>> & { y: number | null; x: number | null };
 
-/** A survey of apples with a frozen frame: `each` operations in every stratum of every county, an owner for each two. */
+/** A survey of apples with a frozen frame: `each` operations in every stratum of every county, an owner for each `held`. */
 export async function frameOf(
 	owner: Kysely<DB>,
-	{ counties, strata, each }: { counties: string[]; strata: string[]; each: number },
+	{ counties, strata, each, held = 2 }: { counties: string[]; strata: string[]; each: number; held?: number },
 ): Promise<{ surveyId: string; places: Place[] }> {
 	const surveyId = await addSurvey(owner);
 	const places: Place[] = [];
 	for (const countyFips of counties) {
 		for (const stratumKey of strata) {
 			for (let at = 0; at < each; at++) {
-				const ownerId = at % 2 === 1 ? places.at(-1)!.ownerId : await addOwner(owner);
+				const ownerId = at % held > 0 ? places.at(-1)!.ownerId : await addOwner(owner);
 				places.push({ operationId: await addOperation(owner, ownerId, countyFips), ownerId, countyFips, stratumKey });
 			}
 		}
