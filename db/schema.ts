@@ -396,6 +396,8 @@ export interface DirectoryOperationPin {
 export interface DirectoryOwner {
   name: string;
   owner_id: Generated<string>;
+  publication_waived_at: Timestamp | null;
+  publication_waived_by: string | null;
 }
 
 export interface DirectoryPlanting {

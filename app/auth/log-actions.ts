@@ -6,7 +6,10 @@ export const logActions = {
 	grant: ["first_coordinator", "given", "revoked"],
 	access: ["requested", "approved", "declined"],
 	survey: ["created", "opened", "extended", "closed", "invited", "reminders_set", "reminded", "link_replaced"],
-	operation: ["moved", "left", "mail_stopped", "mail_resumed", "address_mended"],
+	operation: [
+		...(["moved", "left", "mail_stopped", "mail_resumed", "address_mended"] as const),
+		...(["publication_allowed", "publication_disallowed"] as const),
+	],
 	response: ["started", "submitted", "amended", "withdrawn"],
 	release: ["drafted", "rejected", "published"],
 	report: ["started", "submitted", "sent_back", "published"],

@@ -65,7 +65,12 @@ export async function forgetOwner(trx: Trx, operationId: string): Promise<void> 
 		.limit(1)
 		.execute();
 	if (others.length === 0) {
-		await trx.updateTable("directory.owner").set({ name: "" }).where("owner_id", "=", ownerId).execute();
+		// Who is forgotten allows nothing any more.
+		await trx
+			.updateTable("directory.owner")
+			.set({ name: "", publication_waived_at: null, publication_waived_by: null })
+			.where("owner_id", "=", ownerId)
+			.execute();
 		return;
 	}
 	const nameless = randomUUID();

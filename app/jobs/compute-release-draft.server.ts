@@ -14,6 +14,7 @@ import { draftChecksum } from "#app/release/publish.server.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
 import type { FrameStratum, Tally } from "#app/tally/tally.ts";
 import { assembleCells } from "./assemble-cells.ts";
+import { type SensitiveMeasures, sensitiveMeasures } from "./sensitive-measures.ts";
 
 type Inputs = {
 	rules: ReleaseRules;
@@ -22,6 +23,7 @@ type Inputs = {
 	frame: (FrameStratum & { cropKey: string })[];
 	frameCells: ReadonlySet<string>;
 	baseKeys: string[];
+	sensitive: SensitiveMeasures;
 	shares: OwnerShares[];
 };
 
@@ -40,7 +42,7 @@ export async function computeReleaseDraft(
 	const cutOffs = { steady: rules.steadyCv, care: rules.careCv };
 	const areas = method.areas.flatMap(({ areaKey, parentKey }) => (parentKey === null ? [] : [{ areaKey, parentKey }]));
 	const started = performance.now();
-	const table = surveyTable(areas, method.cropKeys, shares, inputs.baseKeys);
+	const table = surveyTable(areas, method.cropKeys, shares, inputs.baseKeys, inputs.sensitive.counted);
 	const protection = await protect(table, rules);
 	const seconds = (performance.now() - started) / 1000;
 	const { estimates, joins } = estimateSurvey({
@@ -79,6 +81,8 @@ async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | un
 	const definition = FormDefinition.parse(row.definition);
 	const surveyId = row.survey_id;
 	const baseKeys = definition.measures.flatMap(({ base, key }) => (base ? key.replace(/^base\./, "") : []));
+	const rules = ReleaseRules.parse(row.rules);
+	const sensitive = sensitiveMeasures(definition);
 	const states = await countResponses(trx, surveyId);
 	const tallies = await listTallies(trx, surveyId);
 	const surveyStates = new Set(states.map((state) => state.stateFips));
@@ -87,7 +91,7 @@ async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | un
 		.map(({ key, kind, parentKey, stateFips, name }) => ({ areaKey: key, kind, parentKey, stateFips, name }));
 	const total = (key: "asked" | "answered") => states.reduce((sum, state) => sum + state[key], 0);
 	return {
-		rules: ReleaseRules.parse(row.rules),
+		rules,
 		method: {
 			formKey: definition.key,
 			season: row.season,
@@ -105,7 +109,14 @@ async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | un
 		frame: await listFrameStrata(trx, surveyId),
 		frameCells: await listFrameCells(trx, surveyId),
 		baseKeys,
-		shares: await listOwnerShares(trx, surveyId, baseKeys),
+		sensitive,
+		shares: await listOwnerShares(trx, {
+			surveyId,
+			baseKeys,
+			sensitiveKeys: sensitive.all,
+			countedKeys: sensitive.counted,
+			largestOwners: rules.largest?.owners,
+		}),
 	};
 }
 

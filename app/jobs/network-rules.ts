@@ -6,6 +6,8 @@ import type { ReleaseRules } from "#app/release/draft.ts";
 export const networkRules: ReleaseRules = {
 	minimumOwners: defaultRules.minimumOwners,
 	dominancePercent: defaultRules.dominancePercent,
+	largest: defaultRules.largest ?? null,
+	publicFactor: defaultRules.publicFactor ?? null,
 	steadyCv: defaultCutOffs.steady,
 	careCv: defaultCutOffs.care,
 };

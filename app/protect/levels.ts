@@ -13,18 +13,25 @@ export interface OwnCell {
 /**
  * Cells withheld for their own sake, with their protection levels, in the table's order.
  * - dominated in a quantity: p/100 of the largest less the remainder, so that the second largest owner cannot estimate
- *   the largest to within p% (Handbook on Statistical Disclosure Control, section 4.2, table of protection levels);
+ *   the largest to within p%; under the (n, k) rule 100/k of the largest less the total; the wider of the two (Handbook on
+ *   Statistical Disclosure Control, section 4.2, table of protection levels);
  * - too few owners: p/100 of the largest, remainder or not. The handbook leaves this at 0, which would let the exact
  *   value of a withheld cell be worked out; with one or two owners both come to the same;
- * - another quantity of a dominated cell: likewise p/100 of the largest, as the cell is withheld as a whole;
+ * - another quantity of a dominated cell, and a cell withheld for any other reason: likewise p/100 of the largest, as the cell is withheld as a whole;
  * - a count: at least 1, so that another whole number is possible;
  * - a quantity that is 0 though owners answered (all was lost): p/100 of the mean owner in the nearest area or crop
  *   group that has any, upwards only. Where the whole table has none the zero is plain to see, and no level is asked.
+ * @param keptBack keys of cells that `guardRevision` keeps back.
  */
-export function ownCells(table: ProtectionTable, rules: ProtectionRules): OwnCell[] {
+export function ownCells(
+	table: ProtectionTable,
+	rules: ProtectionRules,
+	keptBack: ReadonlySet<string> = new Set(),
+): OwnCell[] {
 	const wholes = wholesOf(table);
 	return table.cells.flatMap((cell, index) => {
 		const reasons = ownReasons(cell, rules);
+		if (keptBack.has(cell.key) && cell.owners > 0) reasons.push("revision");
 		if (reasons.length === 0) return [];
 		const few = reasons.includes("too_few_owners");
 		const levels = Object.fromEntries(
@@ -49,7 +56,7 @@ function level(
 		share.top1 === 0
 			? part * meanOwner(table, wholes, index, quantity)
 			: few || short === 0
-				? part * share.top1
+				? Math.max(short, part * share.top1)
 				: short;
 	return quantity.counted && asked > 0 ? Math.max(1, asked) : asked;
 }

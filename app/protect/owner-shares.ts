@@ -9,6 +9,8 @@ export interface OwnerShares {
 	/** Distinct owners behind the measure that the fewest answered here. */
 	fewestOwners: number;
 	soleOwner: string | null;
+	/** Whether all here who answered a sensitive question gave the same answer. */
+	uniform?: boolean;
 	/** By key of `surveyQuantities`; respondents are operations. */
 	quantities: Readonly<Record<string, OwnerShare>>;
 }

@@ -1,6 +1,6 @@
 import { describe, expect, test } from "vitest";
 import { ownCells } from "./levels.ts";
-import { checkRules, defaultRules, ownReasons } from "./rules.ts";
+import { checkRules, defaultRules, ownReasons, shortfall } from "./rules.ts";
 import { buildTable, type OwnerShare, type TableCell } from "./table.ts";
 
 const cell = (owners: number, lb: OwnerShare, trees: OwnerShare = lb): TableCell => ({
@@ -43,12 +43,72 @@ describe("own reasons", () => {
 		expect(ownReasons({ ...cell(9, even(9, 10)), fewestOwners: 3 }, defaultRules)).toEqual(["too_few_owners"]);
 	});
 
+	test("nine owners who all gave the same answer to a sensitive question withhold the cell", () => {
+		expect(ownReasons({ ...cell(9, even(9, 10)), uniform: true }, defaultRules)).toEqual(["uniform"]);
+	});
+
+	test("an (n, k) rule must leave owners over whom it does not count, and a public factor room", () => {
+		const largest = { owners: 2, percent: 80 };
+		expect(checkRules({ ...defaultRules, largest, publicFactor: 2 })).toMatchObject({ largest, publicFactor: 2 });
+		for (const owners of [0, 5, 1.5]) {
+			expect(() => checkRules({ ...defaultRules, largest: { owners, percent: 80 } })).toThrow("largest.owners");
+		}
+		for (const percent of [0, 100]) {
+			expect(() => checkRules({ ...defaultRules, largest: { owners: 2, percent } })).toThrow("largest.percent");
+		}
+		expect(() => checkRules({ ...defaultRules, publicFactor: 1.1 })).toThrow("publicFactor");
+		expect(() => checkRules({ ...defaultRules, largest, publicFactor: 1.25 })).toThrow("publicFactor");
+	});
+
 	test("a network cannot set fewer than three owners or a percentage of nothing", () => {
 		expect(() => checkRules({ minimumOwners: 2, dominancePercent: 10 })).toThrow(RangeError);
 		expect(() => checkRules({ minimumOwners: 4.5, dominancePercent: 10 })).toThrow(RangeError);
 		expect(() => checkRules({ minimumOwners: 5, dominancePercent: 0 })).toThrow(RangeError);
 		expect(() => checkRules({ minimumOwners: 5, dominancePercent: Number.NaN })).toThrow(RangeError);
 		expect(checkRules({ minimumOwners: 3, dominancePercent: 10 })).toEqual({ minimumOwners: 3, dominancePercent: 10 });
+	});
+});
+
+// A p so small that the p% rule says nothing.
+const onlyLargest = (owners: number, percent: number) => ({
+	minimumOwners: 3,
+	dominancePercent: 1e-6,
+	largest: { owners, percent },
+});
+
+// Handbook on Statistical Disclosure Control (Hundepool et al.), section 4.2.
+describe("the handbook's examples", () => {
+	const p10 = { minimumOwners: 3, dominancePercent: 10 };
+
+	test("example 1: (1, 90) misses what p% finds", () => {
+		const share = { total: 100_000, top1: 50_000, top2: 49_000, largest: 50_000 };
+		expect(shortfall(share, onlyLargest(1, 90))).toBe(0);
+		expect(shortfall(share, p10)).toBeCloseTo(4000, 9);
+	});
+
+	test("example 2: (2, 100/1.1) finds what p = 10 lets pass", () => {
+		const share = { total: 110_000, top1: 52_000, top2: 50_000, largest: 102_000 };
+		expect(shortfall(share, p10)).toBe(0);
+		expect(shortfall(share, onlyLargest(2, 100 / 1.1))).toBeCloseTo(1.1 * 102_000 - 110_000, 6);
+	});
+
+	test("example 4: (1, 85) asks for an upper bound of 352.94", () => {
+		const share = { total: 330, top1: 300, top2: 20, largest: 300 };
+		expect(330 + shortfall(share, onlyLargest(1, 85))).toBeCloseTo(352.94117647058823, 9);
+		expect(shortfall(share, p10)).toBeCloseTo(20, 9);
+		expect(shortfall(share, { ...p10, largest: { owners: 1, percent: 85 } })).toBeCloseTo(22.941176470588232, 9);
+	});
+
+	test("waivers: the largest owner without one is guarded from the largest other one", () => {
+		const share = { total: 1060, top1: 1000, top2: 50 };
+		expect(shortfall(share, p10)).toBeCloseTo(100 - 10, 9);
+		expect(shortfall({ ...share, guarded: { first: 50, other: 1000 } }, p10)).toBe(0);
+		expect(shortfall({ ...share, total: 1054, guarded: { first: 50, other: 1000 } }, p10)).toBeCloseTo(1, 9);
+	});
+
+	test("a waiver takes nothing off the minimum of owners", () => {
+		const waived = { ...even(4, 100), guarded: { first: 0, other: 100 } };
+		expect(ownReasons(cell(4, waived), defaultRules)).toEqual(["too_few_owners"]);
 	});
 });
 

@@ -3,6 +3,10 @@ export interface OwnerShare {
 	total: number;
 	top1: number;
 	top2: number;
+	/** Where owners allowed publication: the largest who did not, and the largest other owner. Left out where nobody did. */
+	guarded?: { first: number; other: number };
+	/** Sum of the n largest owners without a waiver, where the rules use (n, k). */
+	largest?: number;
 }
 
 /** One cell: one crop in one area, for all its quantities alike. */
@@ -15,6 +19,8 @@ export interface TableCell {
 	/** Owners behind the measure that the fewest answered, where that is fewer: its figure would be theirs alone. */
 	fewestOwners?: number;
 	quantities: Readonly<Record<string, OwnerShare>>;
+	/** Whether all who answered a sensitive question gave one and the same answer. */
+	uniform?: boolean;
 	/** The one owner of a cell with a single owner, so that this owner is tried as an attacker; else null. */
 	soleOwner?: string | null;
 }
@@ -81,7 +87,7 @@ export function buildTable(input: {
 		for (const { key: quantity } of quantities) checkShare(key, quantity, cell.quantities[quantity]);
 		given.set(key, { ...cell, key });
 	}
-	const none = Object.fromEntries(quantities.map(({ key }) => [key, { total: 0, top1: 0, top2: 0 }]));
+	const none = Object.fromEntries(quantities.map(({ key }) => [key, { total: 0, top1: 0, top2: 0, largest: 0 }]));
 	const cells = combinations(codes).map((coordinates) => {
 		const key = cellKey(...coordinates);
 		return given.get(key) ?? { key, coordinates, owners: 0, quantities: none };

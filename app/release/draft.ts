@@ -7,6 +7,9 @@ export const ReleaseRules = z.object({
 	dominancePercent: z.number(),
 	steadyCv: z.number(),
 	careCv: z.number(),
+	// Rules of a later day: a release made before them was made without.
+	largest: z.object({ owners: z.number().int(), percent: z.number() }).nullable().default(null),
+	publicFactor: z.number().nullable().default(null),
 });
 export type ReleaseRules = z.infer<typeof ReleaseRules>;
 

@@ -3,11 +3,18 @@ import type { Client } from "pg";
 /** A number that would give a withheld county away; no page, file or address may ever hold it. */
 export const secret = 73.125;
 
+/** Tables of a release whose rows must be those of an audited draft, which readers know nothing of. */
+const ofDraft = [
+	["release.release", "release_of_audited_draft"],
+	["release.cell", "cell_as_audited"],
+] as const;
+
 /**
  * An invented release of two measures and one crop: Johnson shown, Linn withheld, Story without growers, Polk too rough.
- * Written by the owner, as only a release's own approval writes these tables.
+ * Written by the owner without a draft behind it, which nobody else can do.
  */
 export async function addRelease(owner: Client, season = 2031): Promise<{ releaseId: string; number: number }> {
+	for (const [table, trigger] of ofDraft) await owner.query(`alter table ${table} disable trigger ${trigger}`);
 	const words = JSON.stringify({ en: `After harvest ${season}`, es: `Después de la cosecha ${season}` });
 	const { rows } = await owner.query(
 		`insert into release.release (release_id, season, form_key, title, rules, method, audit, code_version, checksum)
@@ -64,5 +71,6 @@ export async function addRelease(owner: Client, season = 2031): Promise<{ releas
 			["crop_loss", "apple", "19153", null, null, null, null, null, "rough"],
 		],
 	);
+	for (const [table, trigger] of ofDraft) await owner.query(`alter table ${table} enable trigger ${trigger}`);
 	return { releaseId, number: rows[0].number as number };
 }

@@ -169,7 +169,8 @@ describe("an open survey", () => {
 			surveyId,
 		]);
 		await owner.query(
-			"insert into collect.release_draft (survey_id, status, rules, drafted_by) values ($1, 'audited', '{}', $2)",
+			`insert into collect.release_draft (survey_id, status, rules, audit, drafted_by)
+			values ($1, 'audited', '{}', '{"passed": true}', $2)`,
 			[surveyId, iowa.personId],
 		);
 		const later = new Date(Date.now() + 90 * 86_400_000);

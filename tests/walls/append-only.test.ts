@@ -1,5 +1,6 @@
 import { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
+import { addDraft } from "#tests/database/drafts-fixture.ts";
 import { addRelease } from "#tests/database/publish-fixture.ts";
 import { addPerson } from "#tests/database/surveys-fixture.ts";
 import { createTestDatabase, type TestDatabase } from "#tests/helpers/database.ts";
@@ -94,9 +95,11 @@ test("the application still logs and releases, so the refusals are not for want 
 	);
 	const events = await owner.query("select action from log.event order by event_id");
 	expect(events.rows.map(({ action }) => action)).toEqual(["survey.opened", "survey.closed"]);
+	await app.query("select set_config('tallygrove.scope', 'network', false)");
 	await app.query(
 		`insert into release.release (release_id, season, form_key, title, rules, method, audit, code_version, checksum)
-		values (gen_random_uuid(), 2032, 'after_harvest', '{}', '{}', '{}', '{}', 'test', 'sum')`,
+		values ($1, 2032, 'after_harvest', '{}', '{}', '{}', '{}', 'test', 'sum')`,
+		[await addDraft(owner, { status: "audited", audit: { passed: true }, checksum: "sum" })],
 	);
 	expect((await owner.query("select from release.release")).rowCount).toBe(2);
 });

@@ -1,0 +1,101 @@
+import { randomUUID } from "node:crypto";
+import { Client } from "pg";
+import { afterAll, beforeAll, expect, test } from "vitest";
+import { addDraft, type NewDraft } from "#tests/database/drafts-fixture.ts";
+import { createTestDatabase, type TestDatabase } from "#tests/helpers/database.ts";
+
+// What has not passed its audit is not published, by whichever statement and role.
+
+let database: TestDatabase;
+let owner: Client;
+let app: Client;
+
+beforeAll(async () => {
+	database = await createTestDatabase();
+	owner = new Client({ connectionString: database.ownerUrl });
+	app = new Client({ connectionString: database.appUrl });
+	await Promise.all([owner.connect(), app.connect()]);
+	// As the pages of the network and of the desk connect, which see every draft.
+	await app.query("select set_config('tallygrove.scope', 'network', false)");
+});
+afterAll(async () => {
+	await Promise.all([owner.end(), app.end()]);
+	await database.drop();
+});
+
+const passed = { passed: true };
+const release = (client: Client, releaseId: string, checksum = "sum") =>
+	client.query(
+		`insert into release.release (release_id, season, form_key, title, rules, method, audit, code_version, checksum)
+		values ($1, 2032, 'after_harvest', '{}', '{}', '{}', '{"passed": true}', 'test', $2)`,
+		[releaseId, checksum],
+	);
+const refused = { message: "release_not_audited" };
+
+test.each<[string, NewDraft]>([
+	["whose audit failed", { status: "audit_failed", audit: { passed: false }, checksum: "sum" }],
+	["that claims in its audit what its status does not", { status: "audit_failed", audit: passed, checksum: "sum" }],
+	["not computed yet", { status: "queued" }],
+	["that a job gave up", { status: "failed" }],
+	["that was sent back", { status: "rejected", audit: passed, checksum: "sum" }],
+	["that a newer one took the place of", { status: "superseded", audit: passed, checksum: "sum" }],
+	["approved before", { status: "approved", audit: passed, checksum: "sum" }],
+])("a draft %s is no release, for the application and for the owner of the tables", async (_told, draft) => {
+	const draftId = await addDraft(owner, draft);
+	for (const client of [app, owner]) await expect(release(client, draftId)).rejects.toMatchObject(refused);
+});
+
+test("an audited draft is one, though not with other cells than were audited, and nothing else is", async () => {
+	const draftId = await addDraft(owner, { status: "audited", audit: passed, checksum: "sum" });
+	await expect(release(app, draftId, "another")).rejects.toMatchObject(refused);
+	await expect(release(app, randomUUID())).rejects.toMatchObject(refused);
+	await expect(release(app, draftId)).resolves.toMatchObject({ rowCount: 1 });
+});
+
+test("who sees no draft publishes none", async () => {
+	const draftId = await addDraft(owner, { status: "audited", audit: passed, checksum: "sum" });
+	const stranger = new Client({ connectionString: database.appUrl });
+	await stranger.connect();
+	try {
+		await expect(release(stranger, draftId)).rejects.toMatchObject(refused);
+	} finally {
+		await stranger.end();
+	}
+});
+
+test("no draft is called audited or approved without an audit that passed", async () => {
+	for (const status of ["audited", "approved"]) {
+		for (const audit of [null, { passed: false }]) {
+			await expect(addDraft(owner, { status, audit })).rejects.toMatchObject({ code: "23514" });
+		}
+	}
+	const waiting = await addDraft(owner, { status: "audit_failed", audit: { passed: false } });
+	await expect(
+		owner.query("update collect.release_draft set status = 'audited' where release_draft_id = $1", [waiting]),
+	).rejects.toMatchObject({ constraint: "release_draft_audited_passed" });
+});
+
+test("a cell is shown only where the audited draft shows it", async () => {
+	const draftId = await addDraft(owner, { status: "audited", audit: passed, checksum: "sum" });
+	await owner.query(
+		`insert into collect.release_draft_cell (release_draft_id, crop_key, area_key, status, respondents, figures) values
+			($1, 'apple', '19', 'shown', 9, '[]'), ($1, 'apple', '19103', 'withheld', null, null)`,
+		[draftId],
+	);
+	await release(app, draftId);
+	await app.query(
+		`insert into release.area (release_id, area_key, kind, name) values ($1, '19', 'state', 'Iowa'),
+			($1, '19103', 'county', 'Johnson'), ($1, '19113', 'county', 'Linn')`,
+		[draftId],
+	);
+	const cell = (area: string, status: string) =>
+		app.query(
+			"insert into release.cell (release_id, crop_key, area_key, status, respondents_band) values ($1, 'apple', $2, $3, $4)",
+			[draftId, area, status, status === "shown" ? "5-9" : null],
+		);
+	await expect(cell("19103", "shown")).rejects.toMatchObject({ message: "cell_not_as_audited" });
+	await expect(cell("19113", "shown")).rejects.toMatchObject({ message: "cell_not_as_audited" });
+	await cell("19", "shown");
+	await cell("19103", "withheld");
+	expect((await owner.query("select from release.cell where release_id = $1", [draftId])).rowCount).toBe(2);
+});
