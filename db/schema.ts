@@ -488,11 +488,13 @@ export interface ReleaseFigure {
   area_key: string;
   crop_key: string;
   cv: number | null;
+  first_quartile: number | null;
   lower_bound: number | null;
   measure_key: string;
   release_id: string;
   standard_error: number | null;
   steadiness: string;
+  third_quartile: number | null;
   upper_bound: number | null;
   value: number | null;
 }

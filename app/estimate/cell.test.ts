@@ -1,6 +1,7 @@
 import { describe, expect, test } from "vitest";
 import { momentsOf } from "#app/lib/moments.ts";
 import { estimateCell, type EstimateKind } from "#app/estimate/cell.ts";
+import { defaultCutOffs } from "#app/estimate/steadiness.ts";
 import { joinStrata } from "#app/estimate/strata.ts";
 
 const frame = [
@@ -95,7 +96,7 @@ describe("a cell's estimate", () => {
 	test("the network's own cut-offs decide the word", () => {
 		const { cv } = estimateCell({ kind: "ratio" }, strata, some);
 		const word = (steady: number, care: number) =>
-			estimateCell({ kind: "ratio" }, strata, some, { steady, care }).steadiness;
+			estimateCell({ kind: "ratio" }, strata, some, { ...defaultCutOffs, steady, care }).steadiness;
 		expect(word(cv!, 1)).toBe("steady");
 		expect(word(cv! / 2, cv!)).toBe("care");
 		expect(word(cv! / 3, cv! / 2)).toBe("rough");

@@ -6,7 +6,7 @@ import {
 	type StratumTally,
 } from "#app/estimate/domain.ts";
 import { estimateOf, type Figure } from "#app/estimate/estimators.ts";
-import { exactInterval, logitInterval, normalInterval, type Interval } from "#app/estimate/interval.ts";
+import { normalInterval, proportionInterval, type Interval } from "#app/estimate/interval.ts";
 import { linearize, type EstimateKind } from "#app/estimate/linearize.ts";
 import { steadiness, type Steadiness, type SteadinessCutOffs } from "#app/estimate/steadiness.ts";
 import type { Join, StrataFrame } from "#app/estimate/strata.ts";
@@ -91,8 +91,7 @@ function figureOf(kind: EstimateKind, strata: readonly DomainStratum[]): Figure 
 
 function intervalOf(kind: EstimateKind, figure: Figure, strata: readonly DomainStratum[]): Interval | null {
 	if (kind !== "proportion") return normalInterval(figure);
-	const df = domainDegreesOfFreedom(strata);
-	return logitInterval(figure, df) ?? exactInterval(figure, df, domainTotals(strata).respondents);
+	return proportionInterval(figure, domainDegreesOfFreedom(strata), domainTotals(strata).respondents);
 }
 
 function clip(

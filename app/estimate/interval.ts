@@ -53,6 +53,14 @@ export function exactInterval({ value, standardError }: Figure, df: number, resp
 	};
 }
 
+/**
+ * Interval of a proportion as it is published: on the logit scale, and exact where there is no logit.
+ * @returns null with no degree of freedom.
+ */
+export function proportionInterval(figure: Figure, df: number, respondents: number): Interval | null {
+	return logitInterval(figure, df) ?? exactInterval(figure, df, respondents);
+}
+
 function expit(logit: number): number {
 	return 1 / (1 + Math.exp(-logit));
 }

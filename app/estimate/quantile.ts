@@ -74,7 +74,7 @@ export function quantileEstimate(
 	if (steps.length === 0) return null;
 
 	const value = valueAt(steps, p, rule);
-	const below = strata.map((stratum) => sharesBelow(stratum, value));
+	const below = sharesAtOrBelow(strata, value);
 	const share = ratioEstimate(below)!;
 	const respondents = below.reduce((sum, stratum) => sum + stratum.domain.n, 0);
 	const figure = { value, share, respondents };
@@ -87,6 +87,16 @@ export function quantileEstimate(
 	const upper = endAt(steps, ends.upper, rule);
 	const standardError = lower === null || upper === null ? null : (upper - lower) / (2 * t);
 	return { ...figure, lower, upper, standardError };
+}
+
+/** The value alone, which a stratum of one respondent has too. @returns null where nobody of the domain answered. */
+export function quantileValue(
+	strata: readonly HistogramStratum[],
+	p: number,
+	rule: QuantileRule = "lower",
+): number | null {
+	const steps = distribution(strata);
+	return steps.length === 0 ? null : valueAt(steps, p, rule);
 }
 
 /** Values in rising order, each with the weight at or below it. */
@@ -117,14 +127,19 @@ function endAt(steps: readonly Step[], share: number, rule: QuantileRule): numbe
 	return snapped < 0 || snapped > 1 ? null : valueAt(steps, snapped, rule);
 }
 
-/** The stratum with y = 1 for values at or below the bound, x = 1: its ratio is the share at or below. */
-function sharesBelow({ counts, ...stratum }: HistogramStratum, bound: number): DomainStratum {
-	let n = 0;
-	let below = 0;
-	for (const count of counts) {
-		n += count.n;
-		if (count.value <= bound) below += count.n;
-	}
-	const mYY = n === 0 ? 0 : (below * (n - below)) / n;
-	return { ...stratum, domain: { n, sumY: below, sumX: n, mYY, mXX: 0, mXY: 0 } };
+/**
+ * The strata with y = 1 for values at or below the bound, x = 1: their ratio is the share at or below. For a median it tells
+ * what each stratum adds to its doubt.
+ */
+export function sharesAtOrBelow(strata: readonly HistogramStratum[], bound: number): DomainStratum[] {
+	return strata.map(({ counts, ...stratum }) => {
+		const n = countIn(counts);
+		const below = countIn(counts.filter(({ value }) => value <= bound));
+		const mYY = n === 0 ? 0 : (below * (n - below)) / n;
+		return { ...stratum, domain: { n, sumY: below, sumX: n, mYY, mXX: 0, mXY: 0 } };
+	});
+}
+
+function countIn(counts: HistogramStratum["counts"]): number {
+	return counts.reduce((sum, { n }) => sum + n, 0);
 }

@@ -1,5 +1,5 @@
 import { expect, test } from "vitest";
-import { steadiness } from "#app/estimate/steadiness.ts";
+import { daySteadiness, steadiness } from "#app/estimate/steadiness.ts";
 
 const sampled = { standardError: 1, everybody: false };
 
@@ -20,4 +20,20 @@ test("no spread among a sample is not proof, and no standard error is no figure"
 test("cut-offs that do not rise are refused", () => {
 	expect(() => steadiness({ ...sampled, cv: 0.1 }, { steady: 0.3, care: 0.2 })).toThrow(RangeError);
 	expect(() => steadiness({ ...sampled, cv: 0.1 }, { steady: 0, care: 0.2 })).toThrow(RangeError);
+});
+
+test("a day is judged by half the width of its interval, and never from fewer than five answers", () => {
+	const told = { respondents: 5, everybody: false };
+	expect([0, 0.5, 3, 3.5, 7, 7.5].map((halfWidth) => daySteadiness({ ...told, halfWidth }))).toEqual([
+		"care",
+		"steady",
+		"steady",
+		"care",
+		"care",
+		"rough",
+	]);
+	expect(daySteadiness({ ...told, halfWidth: null })).toBe("rough");
+	expect(daySteadiness({ respondents: 4, everybody: true, halfWidth: 0 })).toBe("rough");
+	expect(daySteadiness({ respondents: 5, everybody: true, halfWidth: 0 })).toBe("steady");
+	expect(() => daySteadiness({ ...told, halfWidth: 1 }, { steadyDays: 7, careDays: 3 })).toThrow(RangeError);
 });

@@ -1,21 +1,25 @@
-import { estimateCell, type Estimate, type EstimateKind } from "#app/estimate/cell.ts";
+import { estimateCell, type EstimateKind } from "#app/estimate/cell.ts";
 import type { SteadinessCutOffs } from "#app/estimate/steadiness.ts";
 import { joinStrata, respondentsByStratum, type Join, type StrataFrame } from "#app/estimate/strata.ts";
+import { type DayEstimate, estimateDays } from "#app/estimate/days.ts";
 import { groupBy } from "#app/lib/group-by.ts";
-import type { FrameStratum, Tally } from "#app/tally/tally.ts";
+import type { DayCount, FrameStratum, Tally } from "#app/tally/tally.ts";
 
 /** What of a measure the estimators need; a form's measures have more. */
-export type SurveyMeasure = { key: string; kind: EstimateKind; scale: number; unit: string };
+export type SurveyMeasure = { key: string; kind: EstimateKind | "day"; scale: number; unit: string };
+/** A tally row; of a measure of days with its histogram. */
+export type SurveyTally = Tally & { days?: readonly DayCount[] | null };
 
 /** Where a county lies: the keys of every area that holds it, itself first. */
 export type AreasOfCounty = ReadonlyMap<string, readonly string[]>;
 
-export type AreaEstimate = Estimate & { measureKey: string; cropKey: string; areaKey: string };
+export type AreaEstimate = DayEstimate & { measureKey: string; cropKey: string; areaKey: string };
 export type SurveyEstimates = { estimates: AreaEstimate[]; joins: (Join & { measureKey: string; cropKey: string })[] };
 
 /**
  * Every estimate of one survey: each measure, crop and area that has a tally row. Values are scaled to the measure's
  * unit (a share told in percent is 0 to 100), and so are standard errors and interval ends; cv stays a fraction.
+ * A measure of days gives its median with the quartiles.
  * Strata are joined once for each measure and crop over all tallies given, so that areas add up.
  * @param frame the strata of every crop, `all` among them, of the same states as the tallies.
  * @throws {RangeError} when a tally lies in a county that no area holds, or in a stratum outside the frame.
@@ -23,7 +27,7 @@ export type SurveyEstimates = { estimates: AreaEstimate[]; joins: (Join & { meas
 export function estimateSurvey(input: {
 	measures: readonly SurveyMeasure[];
 	frame: readonly (FrameStratum & { cropKey: string })[];
-	tallies: readonly Tally[];
+	tallies: readonly SurveyTally[];
 	areasOfCounty: AreasOfCounty;
 	cutOffs?: SteadinessCutOffs;
 }): SurveyEstimates {
@@ -44,8 +48,8 @@ export function estimateSurvey(input: {
 	return result;
 }
 
-function groupByArea(tallies: readonly Tally[], areasOfCounty: AreasOfCounty): Map<string, Tally[]> {
-	const byArea = new Map<string, Tally[]>();
+function groupByArea(tallies: readonly SurveyTally[], areasOfCounty: AreasOfCounty): Map<string, SurveyTally[]> {
+	const byArea = new Map<string, SurveyTally[]>();
 	for (const tally of tallies) {
 		const areas = areasOfCounty.get(tally.countyFips);
 		if (!areas) throw new RangeError(`county ${tally.countyFips} lies in no area`);
@@ -61,9 +65,13 @@ function groupByArea(tallies: readonly Tally[], areasOfCounty: AreasOfCounty): M
 function estimateArea(
 	measure: SurveyMeasure,
 	strata: StrataFrame,
-	rows: Tally[],
+	rows: SurveyTally[],
 	cutOffs?: SteadinessCutOffs,
-): Estimate {
+): DayEstimate {
+	if (measure.kind === "day") {
+		const days = rows.map((row) => ({ stratumKey: row.stratumKey, days: row.days ?? null }));
+		return estimateDays(strata, days, cutOffs);
+	}
 	// A share of a whole cannot leave 0 to 1. A loss can be below 0 (a crop above normal), so only a proportion is cut.
 	const range =
 		measure.kind === "proportion"

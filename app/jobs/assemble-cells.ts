@@ -40,10 +40,10 @@ export function assembleCells(input: {
 }
 
 function toFigure(estimate: AreaEstimate): DraftFigure {
-	const { measureKey, value, standardError, cv, lower, upper } = estimate;
+	const { measureKey, value, standardError, cv, lower, upper, quartiles } = estimate;
 	// A value without a standard error, or no value at all, cannot be leant on.
 	const steadiness = value === null || standardError === null ? "rough" : estimate.steadiness;
-	return { measureKey, value, standardError, cv, lower, upper, steadiness };
+	return { measureKey, value, standardError, cv, lower, upper, steadiness, ...(quartiles && { quartiles }) };
 }
 
 /** Frame cells of counties, carried up to every area that holds them. */

@@ -1,6 +1,6 @@
 import { sql } from "kysely";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
-import { FormDefinition, isSummed } from "#app/collect/form.ts";
+import { FormDefinition } from "#app/collect/form.ts";
 import { Words } from "#app/lib/words.ts";
 import { listAreas } from "#app/directory/areas.server.ts";
 import { estimateSurvey } from "#app/estimate/survey.ts";
@@ -12,14 +12,14 @@ import { ALL_CROPS, surveyTable } from "#app/protect/survey-table.ts";
 import { type DraftCell, ReleaseAudit, type ReleaseMethod, ReleaseRules } from "#app/release/draft.ts";
 import { draftChecksum } from "#app/release/publish.server.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
-import type { FrameStratum, Tally } from "#app/tally/tally.ts";
+import type { FrameStratum, KeptTally } from "#app/tally/tally.ts";
 import { assembleCells } from "./assemble-cells.ts";
 import { type SensitiveMeasures, sensitiveMeasures } from "./sensitive-measures.ts";
 
 type Inputs = {
 	rules: ReleaseRules;
 	method: Omit<ReleaseMethod, "joins">;
-	tallies: Tally[];
+	tallies: KeptTally[];
 	frame: (FrameStratum & { cropKey: string })[];
 	frameCells: ReadonlySet<string>;
 	baseKeys: string[];
@@ -39,7 +39,8 @@ export async function computeReleaseDraft(
 	const inputs = await transact({ kind: "network" }, (trx) => readInputs(trx, releaseDraftId), "repeatable read");
 	if (!inputs) return;
 	const { rules, method, tallies, frame, shares } = inputs;
-	const cutOffs = { steady: rules.steadyCv, care: rules.careCv };
+	const { steadyCv: steady, careCv: care, steadyDays, careDays } = rules;
+	const cutOffs = { steady, care, steadyDays, careDays };
 	const areas = method.areas.flatMap(({ areaKey, parentKey }) => (parentKey === null ? [] : [{ areaKey, parentKey }]));
 	const started = performance.now();
 	const table = surveyTable(areas, method.cropKeys, shares, inputs.baseKeys, inputs.sensitive.counted);
@@ -101,7 +102,7 @@ async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | un
 			all: { asked: total("asked"), answered: total("answered") },
 			states,
 			setAside: tallies.reduce((sum, tally) => sum + tally.setAside, 0),
-			measures: definition.measures.filter(isSummed).filter((measure) => !measure.base),
+			measures: definition.measures.filter((measure) => !measure.base),
 			areas,
 			cropKeys: row.crop_keys,
 		},

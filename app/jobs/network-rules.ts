@@ -10,4 +10,6 @@ export const networkRules: ReleaseRules = {
 	publicFactor: defaultRules.publicFactor ?? null,
 	steadyCv: defaultCutOffs.steady,
 	careCv: defaultCutOffs.care,
+	steadyDays: defaultCutOffs.steadyDays,
+	careDays: defaultCutOffs.careDays,
 };

@@ -35,7 +35,7 @@ export type ReleaseMeasure = {
 	key: string;
 	label: Words;
 	description: Words;
-	kind: "ratio" | "mean" | "total" | "proportion";
+	kind: "ratio" | "mean" | "total" | "proportion" | "day";
 	unit: Unit;
 	decimals: number;
 	worse: "more" | "less" | null;

@@ -10,13 +10,16 @@ export const ReleaseRules = z.object({
 	// Rules of a later day: a release made before them was made without.
 	largest: z.object({ owners: z.number().int(), percent: z.number() }).nullable().default(null),
 	publicFactor: z.number().nullable().default(null),
+	// Rules that were frozen before days were told do not say these.
+	steadyDays: z.number().default(3),
+	careDays: z.number().default(7),
 });
 export type ReleaseRules = z.infer<typeof ReleaseRules>;
 
 /** A measure as a release records it: what a reader of the figures needs, whatever form asked for it. */
 const ReleaseMeasure = z.object({
 	key: z.string(),
-	kind: z.enum(["ratio", "mean", "total", "proportion"]),
+	kind: z.enum(["ratio", "mean", "total", "proportion", "day"]),
 	label: Words,
 	description: Words,
 	unit: z.enum([
@@ -89,6 +92,8 @@ export const DraftFigure = z.object({
 	lower: z.number().nullable(),
 	upper: z.number().nullable(),
 	steadiness: Steadiness,
+	/** Of a measure of days alone, whose value is the median. */
+	quartiles: z.object({ first: z.number(), third: z.number() }).optional(),
 });
 export type DraftFigure = z.infer<typeof DraftFigure>;
 
@@ -123,7 +128,7 @@ export function respondentsBand(respondents: number): string {
 
 /**
  * A figure as it is published: the value rounded to the measure's decimals, the interval outwards to the same, so that
- * rounding never makes it look surer. A rough figure has no number.
+ * rounding never makes it look surer. Quartiles are days that were told, and whole already. A rough figure has no number.
  */
 export function publishedFigure(figure: DraftFigure, decimals: number): DraftFigure {
 	if (figure.steadiness === "rough" || figure.value === null) {
@@ -150,5 +155,6 @@ export function publishedFigure(figure: DraftFigure, decimals: number): DraftFig
 		lower: outwards(figure.lower, Math.floor),
 		upper: outwards(figure.upper, Math.ceil),
 		steadiness: figure.steadiness,
+		...(figure.quartiles && { quartiles: figure.quartiles }),
 	};
 }

@@ -163,6 +163,8 @@ async function insertCells(trx: Trx, releaseId: string, method: ReleaseMethod, c
 				lower_bound: figure.lower,
 				upper_bound: figure.upper,
 				steadiness: figure.steadiness,
+				first_quartile: figure.quartiles?.first ?? null,
+				third_quartile: figure.quartiles?.third ?? null,
 			};
 		}),
 	);
@@ -170,8 +172,9 @@ async function insertCells(trx: Trx, releaseId: string, method: ReleaseMethod, c
 	await sql`insert into release.cell (release_id, crop_key, area_key, status, respondents_band)
 		select ${releaseId}::uuid, * from jsonb_to_recordset(${JSON.stringify(cellRows)}::jsonb)
 		as c(crop_key text, area_key text, status text, respondents_band text)`.execute(trx);
-	await sql`insert into release.figure (release_id, measure_key, crop_key, area_key, value, standard_error, cv, lower_bound, upper_bound, steadiness)
+	await sql`insert into release.figure (release_id, measure_key, crop_key, area_key, value, standard_error, cv, lower_bound, upper_bound,
+			steadiness, first_quartile, third_quartile)
 		select ${releaseId}::uuid, * from jsonb_to_recordset(${JSON.stringify(figureRows)}::jsonb)
 		as f(measure_key text, crop_key text, area_key text, value float8, standard_error float8, cv float8,
-			lower_bound float8, upper_bound float8, steadiness text)`.execute(trx);
+			lower_bound float8, upper_bound float8, steadiness text, first_quartile float8, third_quartile float8)`.execute(trx);
 }

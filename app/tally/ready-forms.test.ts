@@ -39,9 +39,29 @@ describe("bloom watch", () => {
 	const form = readyForms.bloom_watch;
 	const density = { a1: "light", a2: "heavy", c1: "none", h1: "normal", p1: "normal" };
 	const each = Object.fromEntries(Object.entries(density).map(([id, value]) => [id, { bloom_density: value }]));
+	const days: Record<string, Told> = {
+		a1: { first_bloom: "2024-05-03", full_bloom: "2024-05-07", petal_fall: "2024-05-16" },
+		a2: { first_bloom: "2024-04-30", full_bloom: "2024-05-08", petal_fall: "2024-05-14" },
+	};
+	const withDays = Object.fromEntries(
+		Object.entries(each).map(([id, told]) => [id, { ...told, ...(days[id] ?? days.a1) }]),
+	);
 	const facts = factsIn(form, answersOf({ bee_weather: "poor" }, each));
 
-	test("every measure has its facts", () => expect([...facts.keys()].toSorted()).toEqual(allOf(form).toSorted()));
+	test("every measure has its facts", () => {
+		const all = factsIn(form, answersOf({ bee_weather: "poor" }, withDays));
+		expect([...all.keys()].toSorted()).toEqual(allOf(form).toSorted());
+	});
+	test("bloom begins with a crop's first planting and ends with its last, in days of a leap year", () => {
+		const all = factsIn(form, answersOf({}, withDays));
+		expect(all.get("first_bloom apple")).toEqual([121, 1]);
+		expect(all.get("full_bloom apple")).toEqual([128, 1]);
+		expect(all.get("petal_fall apple")).toEqual([137, 1]);
+		expect(all.has("first_bloom all")).toBe(false);
+		const some = factsIn(form, answersOf({}, { ...withDays, a2: each.a2! }));
+		expect(some.has("first_bloom apple")).toBe(false);
+		expect(some.get("first_bloom pawpaw")).toEqual([124, 1]);
+	});
 	test("trees of plantings with less bloom, of all trees", () => {
 		expect(facts.get("light_bloom apple")).toEqual([100, 400]);
 		expect(facts.get("light_bloom tart_cherry")).toEqual([60, 60]);
@@ -133,8 +153,9 @@ describe("pests and diseases", () => {
 
 test("after harvest: every measure has its facts", () => {
 	const form = readyForms.after_harvest;
+	const days = { first_harvest: "2031-09-01", last_harvest: "2031-10-01" };
 	const planting = { bearing_trees: 40, normal_crop: 4000, harvested: 1000 };
 	const each = Object.fromEntries(plantings.map(({ plantingId }) => [plantingId, planting]));
-	const facts = factsIn(form, answersOf({ cause_freeze: 100 }, each));
+	const facts = factsIn(form, answersOf({ cause_freeze: 100, ...days }, each));
 	expect([...facts.keys()].toSorted()).toEqual(allOf(form).toSorted());
 });

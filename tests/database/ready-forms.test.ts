@@ -48,10 +48,15 @@ const pest = (key: string, trees: string, severity: string, fruit: string): Step
 	[`${key}_severity`]: severity,
 	[`${key}_fruit`]: fruit,
 });
+const bloomDays = (i: number): StepValues => ({
+	first_bloom: `2031-05-0${i + 1}`,
+	full_bloom: `2031-05-1${i}`,
+	petal_fall: "2031-05-20",
+});
 /** What a grower types, by the beginning of the step's key; `{}` goes on without an answer. */
 const typed: Record<ReadyFormKey, (i: number) => [string, StepValues][]> = {
 	bloom_watch: (i) => [
-		["planting-", { bloom_density: i % 2 ? "light" : "normal", first_bloom: "2031-05-02", petal_fall: "2031-05-14" }],
+		["planting-", { bloom_density: i % 2 ? "light" : "normal", ...bloomDays(i) }],
 		["bees", { bee_weather: i < 3 ? "poor" : "good" }],
 		["note", {}],
 	],
@@ -71,7 +76,7 @@ const typed: Record<ReadyFormKey, (i: number) => [string, StepValues][]> = {
 	after_harvest: (i) => [
 		["planting-", pounds(40, 4000, 400 * i)],
 		["causes", { cause_freeze: "100" }],
-		["harvest_days", {}],
+		["harvest_days", { first_harvest: `2031-09-0${i + 1}`, last_harvest: "2031-10-02" }],
 		["next_year", { bud_set: "normal" }],
 	],
 };
@@ -144,6 +149,8 @@ test("the figures are those of the answers", async () => {
 	// Seven operations with 40 to 46 apple trees: 301 in all.
 	expect(figure("bloom_watch", "light_bloom")).toEqual([41 + 43 + 45, 301]);
 	expect(figure("bloom_watch", "poor_bee_weather")).toEqual([3, 7]);
+	const days = [...operationIds.keys()].reduce((sum, i) => sum + 121 + i, 0);
+	expect(figure("bloom_watch", "first_bloom")).toEqual([days, 7]);
 	const killed = operationIds.reduce((sum, _, i) => sum + ((40 + i) * 5 * i) / 50, 0);
 	expect(figure("after_freeze", "killed_bloom")).toEqual([expect.closeTo(killed, 9), 301]);
 	expect(figure("after_freeze", "protected")).toEqual([2, 7]);

@@ -1,5 +1,25 @@
 import type { Measure } from "#app/collect/form.ts";
 
+/** Asked once of the whole operation: a grower of several crops tells the first day of whichever came first. */
+const harvestDays = [
+	{
+		key: "first_harvest",
+		label: { en: "First day of harvest", es: "Primer día de cosecha" },
+		description: {
+			en: "The day by which half of the operations with the crop had begun to pick, whichever of their crops came first.",
+			es: "El día en que la mitad de las fincas con el cultivo ya había empezado a cosechar, sin importar cuál de sus cultivos maduró primero.",
+		},
+	},
+	{
+		key: "last_harvest",
+		label: { en: "Last day of harvest", es: "Último día de cosecha" },
+		description: {
+			en: "The day by which half of the operations with the crop had finished picking all of their crops.",
+			es: "El día en que la mitad de las fincas con el cultivo ya había terminado de cosechar todos sus cultivos.",
+		},
+	},
+] as const;
+
 /** Loss, yield, and the base quantities that the published cells add up in. */
 export const afterHarvestMeasures: Measure[] = [
 	{
@@ -92,6 +112,21 @@ export const afterHarvestMeasures: Measure[] = [
 		acrossCrops: false,
 		base: false,
 	},
+	...harvestDays.map(({ key, label, description }): Measure => ({
+		key,
+		kind: "day",
+		label,
+		description,
+		unit: "day",
+		decimals: 0,
+		worse: null,
+		hue: "yield",
+		numerator: { day: key },
+		denominator: { one: true },
+		scale: 1,
+		acrossCrops: true,
+		base: false,
+	})),
 	...(["bearing_trees", "normal_crop", "harvested"] as const).map((question) => ({
 		key: question === "bearing_trees" ? "base.bearing_trees" : `base.${question}_lb`,
 		kind: "total" as const,

@@ -1,4 +1,5 @@
 import type { FormDefinition } from "#app/collect/form.ts";
+import { bloomDayMeasures } from "./bloom-measures.ts";
 import { knownTrees, knownTreesBase } from "./known-trees.ts";
 import { noteQuestion } from "./note.ts";
 
@@ -121,6 +122,7 @@ export const bloomWatch: FormDefinition = {
 		{ key: "note", title: { en: "A last word", es: "Algo más" }, perPlanting: false, questions: [noteQuestion] },
 	],
 	measures: [
+		...bloomDayMeasures,
 		{
 			key: "light_bloom",
 			kind: "proportion",

@@ -1,0 +1,53 @@
+import type { Estimate } from "#app/estimate/cell.ts";
+import { proportionInterval } from "#app/estimate/interval.ts";
+import { type DayTally, histogramStrata, quantileEstimate, quantileValue } from "#app/estimate/quantile.ts";
+import { daySteadiness, type SteadinessCutOffs } from "#app/estimate/steadiness.ts";
+import type { StrataFrame } from "#app/estimate/strata.ts";
+
+/** Days by which a quarter and three quarters of the operations were there. */
+export type Quartiles = { first: number; third: number };
+
+/** A figure of a day of the year has the median as its value, a standard error in days, and no coefficient of variation. */
+export type DayEstimate = Estimate & { quartiles?: Quartiles };
+
+/**
+ * Median and quartiles of a day of the year in one area, from the area's histograms alone. All are days that somebody told.
+ * The median's interval is that of the share of operations at or before it, as of any published proportion, read back as days.
+ * @param frame the joined strata of the whole network for this measure and crop (`joinStrata`).
+ * @param tallies the area's tally rows of this measure and crop.
+ * @returns as `estimateCell`. No quartiles where fewer than two operations answered.
+ * @throws {RangeError} when a tally's stratum is not in the frame.
+ */
+export function estimateDays(
+	frame: StrataFrame,
+	tallies: readonly DayTally[],
+	cutOffs?: SteadinessCutOffs,
+): DayEstimate {
+	const rows = tallies.filter(({ days }) => days?.some(({ n }) => n > 0));
+	const strata = histogramStrata(frame, rows);
+	const present = strata.filter(({ counts }) => counts.length > 0);
+	const respondents = present.flatMap(({ counts }) => counts).reduce((sum, { n }) => sum + n, 0);
+	const keys = new Set(rows.map(({ stratumKey }) => stratumKey));
+	const joins = frame.joins.filter((join) => join.stratumKeys.some((key) => keys.has(key)));
+	const found = { respondents, joins, cv: null };
+	const empty = { standardError: null, lower: null, upper: null, steadiness: "rough" } as const;
+	const value = quantileValue(present, 0.5);
+	if (value === null) return { ...found, ...empty, value, missing: "no_respondents" };
+	if (respondents === 1) return { ...found, ...empty, value, missing: "one_respondent" };
+
+	const everybody = present.every(({ samplingFraction }) => samplingFraction === 1);
+	const { lower, upper, standardError } = everybody
+		? { lower: value, upper: value, standardError: 0 }
+		: quantileEstimate(strata, 0.5, { interval: proportionInterval })!;
+	const halfWidth = lower === null || upper === null ? null : (upper - lower) / 2;
+	return {
+		...found,
+		value,
+		standardError,
+		lower,
+		upper,
+		steadiness: daySteadiness({ halfWidth, respondents, everybody }, cutOffs),
+		missing: null,
+		quartiles: { first: quantileValue(present, 0.25)!, third: quantileValue(present, 0.75)! },
+	};
+}
