@@ -1,3 +1,4 @@
+import type { RevisionGuard } from "./revision.ts";
 import { ownReasons, shortfall, type OwnReason, type ProtectionRules } from "./rules.ts";
 import type { ProtectionTable, Quantity, TableCell } from "./table.ts";
 
@@ -21,12 +22,12 @@ export interface OwnCell {
  * - a count: at least 1, so that another whole number is possible;
  * - a quantity that is 0 though owners answered (all was lost): p/100 of the mean owner in the nearest area or crop
  *   group that has any, upwards only. Where the whole table has none the zero is plain to see, and no level is asked.
- * @param keptBack keys of cells that `guardRevision` keeps back.
+ * @param keptBack cells that `guardRevision` keeps back, with the room that it asks for: the wider one counts.
  */
 export function ownCells(
 	table: ProtectionTable,
 	rules: ProtectionRules,
-	keptBack: ReadonlySet<string> = new Set(),
+	keptBack: RevisionGuard["keptBack"] = new Map(),
 ): OwnCell[] {
 	const wholes = wholesOf(table);
 	return table.cells.flatMap((cell, index) => {
@@ -35,7 +36,10 @@ export function ownCells(
 		if (reasons.length === 0) return [];
 		const few = reasons.includes("too_few_owners");
 		const levels = Object.fromEntries(
-			table.quantities.map((q) => [q.key, level(table, wholes, index, q, few, rules)] as const),
+			table.quantities.map((q) => {
+				const asked = Math.max(level(table, wholes, index, q, few, rules), keptBack.get(cell.key)?.[q.key] ?? 0);
+				return [q.key, q.counted && asked > 0 ? Math.max(1, asked) : asked] as const;
+			}),
 		);
 		return [{ index, reasons, levels }];
 	});
@@ -52,13 +56,8 @@ function level(
 	const share = table.cells[index]!.quantities[quantity.key]!;
 	const part = rules.dominancePercent / 100;
 	const short = shortfall(share, rules);
-	const asked =
-		share.top1 === 0
-			? part * meanOwner(table, wholes, index, quantity)
-			: few || short === 0
-				? Math.max(short, part * share.top1)
-				: short;
-	return quantity.counted && asked > 0 ? Math.max(1, asked) : asked;
+	if (share.top1 === 0) return part * meanOwner(table, wholes, index, quantity);
+	return few || short === 0 ? Math.max(short, part * share.top1) : short;
 }
 
 /** Quantity per owner in the nearest whole that holds this cell and is not 0 too; 0 when there is none. */
