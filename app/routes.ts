@@ -70,10 +70,12 @@ export default [
 	route("answer/worker.js", "routes/grower/worker.ts"),
 
 	route("desk/surveys/:surveyId/responses/:responseId/photos/:photoId", "routes/desk/photo.ts"),
+	route("desk/growers/list.csv", "routes/desk/growers-csv.ts"),
 	...prefix("desk", [
 		layout("routes/desk/layout.tsx", [
 			index("routes/desk/overview.tsx"),
 			route("growers", "routes/desk/growers.tsx"),
+			route("growers/chosen", "routes/desk/growers-chosen.tsx"),
 			route("growers/:operationId", "routes/desk/grower.tsx"),
 			route("surveys", "routes/desk/surveys.tsx"),
 			route("surveys/new", "routes/desk/survey-new.tsx"),

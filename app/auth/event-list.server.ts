@@ -16,6 +16,8 @@ const Told = z.object({
 	/** How many were asked when a survey was opened, and how many mails were queued. */
 	operations: z.number().optional().catch(undefined),
 	queued: z.number().optional().catch(undefined),
+	/** How many operations were changed or handed out at once. */
+	growers: z.number().optional().catch(undefined),
 	/** The new closing time. */
 	to: z.iso.datetime().optional().catch(undefined),
 	/** A release's number, and a report's address. */

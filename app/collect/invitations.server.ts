@@ -8,13 +8,15 @@ import { findSurvey } from "./surveys.server.ts";
 /**
  * How many would get an invitation or a reminder now, in the viewer's states, and which wave that reminder would be.
  * A page sends the wave back with its button: pressed twice, the second finds the wave taken and sends nothing.
+ * @param only of these operations alone.
  */
-export async function countMailings(trx: Trx, viewer: Associate, surveyId: string) {
+export async function countMailings(trx: Trx, viewer: Associate, surveyId: string, only?: string[]) {
 	const row = await trx
 		.selectFrom("collect.frame_operation as f")
 		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
 		.where("f.survey_id", "=", surveyId)
 		.where("f.state_fips", "in", viewer.stateFips)
+		.$if(only !== undefined, (rows) => rows.where((eb) => eb("f.operation_id", "=", eb.fn.any(eb.val(only!)))))
 		.select([
 			sql<number>`count(*) filter (where ${awaited} and not ${invited})`.as("toInvite"),
 			sql<number>`count(*) filter (where ${awaited} and ${wasInvited})`.as("toRemind"),
@@ -28,8 +30,8 @@ export async function countMailings(trx: Trx, viewer: Associate, surveyId: strin
 }
 
 /** Queues an invitation to everyone in the viewer's states who is awaited and has none that went out or still waits. */
-export async function sendInvitations(trx: Trx, viewer: Associate, surveyId: string) {
-	return queueByHand(trx, viewer, surveyId, "invitation", 1);
+export async function sendInvitations(trx: Trx, viewer: Associate, surveyId: string, only?: string[]) {
+	return queueByHand(trx, viewer, surveyId, "invitation", 1, only);
 }
 
 /**
@@ -37,11 +39,11 @@ export async function sendInvitations(trx: Trx, viewer: Associate, surveyId: str
  * of that wave which a time is set for: then that one goes to the others alone.
  * @param wave the wave the page counted: one that was sent already sends nothing.
  */
-export async function sendReminders(trx: Trx, viewer: Associate, surveyId: string, wave: number) {
+export async function sendReminders(trx: Trx, viewer: Associate, surveyId: string, wave: number, only?: string[]) {
 	const last = await lastWave(trx, surveyId, "reminder");
 	if (!Number.isInteger(wave) || wave < 1 || wave > last + 1) return "not_found" as const;
 	if (wave <= last) return { queued: 0 };
-	return queueByHand(trx, viewer, surveyId, "reminder", wave);
+	return queueByHand(trx, viewer, surveyId, "reminder", wave, only);
 }
 
 async function queueByHand(
@@ -50,12 +52,13 @@ async function queueByHand(
 	surveyId: string,
 	kind: "invitation" | "reminder",
 	wave: number,
+	only?: string[],
 ) {
 	const survey = await findSurvey(trx, viewer, surveyId);
 	if (!survey) return "not_found" as const;
 	if (survey.state !== "open") return "not_open" as const;
 	const { personId, stateFips } = viewer;
-	const queued = await queueWave(trx, { surveyId, kind, wave, states: stateFips, queuedBy: personId });
+	const queued = await queueWave(trx, { surveyId, kind, wave, states: stateFips, queuedBy: personId, only });
 	if (queued > 0) {
 		const action = kind === "invitation" ? "survey.invited" : "survey.reminded";
 		const detail = { queued, wave };

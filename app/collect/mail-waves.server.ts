@@ -11,6 +11,8 @@ export type Wave = {
 	/** In which states; a job works for all of them, under scope `network`. */
 	states: readonly string[] | "all";
 	queuedBy: string | null;
+	/** Of these operations alone, where some were chosen. */
+	only?: string[];
 };
 
 // Conditions on `collect.frame_operation f` joined with `directory.operation o`: the one place that says who gets mail.
@@ -37,7 +39,7 @@ const recipients: Record<WaveKind, ReturnType<typeof sql<boolean>>> = {
  * Writes a mailing for everyone whom this wave concerns and queues its job, in the caller's transaction. Who has a mailing
  * of that wave already gets no second. @returns how many.
  */
-export async function queueWave(trx: Trx, { surveyId, kind, wave, states, queuedBy }: Wave): Promise<number> {
+export async function queueWave(trx: Trx, { surveyId, kind, wave, states, queuedBy, only }: Wave): Promise<number> {
 	const own = sql<number>`(select coalesce(max(m.wave), 0) + 1 from collect.mailing m where m.survey_id = f.survey_id
 		and m.operation_id = f.operation_id and m.kind = 'invitation')`;
 	const mailings = await trx
@@ -50,6 +52,7 @@ export async function queueWave(trx: Trx, { surveyId, kind, wave, states, queued
 				.where("f.survey_id", "=", surveyId)
 				.$if(states !== "all", (query) => query.where("f.state_fips", "in", [...states]))
 				.where(recipients[kind])
+				.$if(only !== undefined, (query) => query.where((eb) => eb("f.operation_id", "=", eb.fn.any(eb.val(only!)))))
 				.orderBy("f.operation_id")
 				.select([
 					"f.survey_id",

@@ -1,5 +1,7 @@
 import { sql } from "kysely";
+import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
 
 /**
  * Marks an address as taking no mail, and its operation as undeliverable in the survey that found out. Nothing happens
@@ -44,4 +46,28 @@ export async function markReachable(trx: Trx, operationId: string): Promise<void
 		.where("s.closed_at", "is", null)
 		.where("s.closes_at", ">", sql<Date>`now()`)
 		.execute();
+}
+
+/** Tries mail anew to those of these operations whose mail came back. @returns to how many. */
+export async function tryAnew(trx: Trx, viewer: Associate, operationIds: string[]): Promise<number> {
+	const returned = await trx
+		.selectFrom("directory.operation")
+		.select("operation_id")
+		.where((eb) => eb("operation_id", "=", eb.fn.any(eb.val(operationIds))))
+		.where((eb) => eb("state_fips", "=", eb.fn.any(eb.val(viewer.stateFips))))
+		.where("status", "=", "active")
+		.where("email", "!=", "")
+		.where("mail_returned_at", "is not", null)
+		.orderBy("operation_id")
+		.execute();
+	for (const { operation_id } of returned) await markReachable(trx, operation_id);
+	if (returned.length > 0)
+		await logEvent(trx, {
+			personId: viewer.personId,
+			action: "operation.tried_anew",
+			subjectKind: "operation",
+			subjectId: returned.length === 1 ? returned[0]!.operation_id : "several",
+			detail: { growers: returned.length },
+		});
+	return returned.length;
 }

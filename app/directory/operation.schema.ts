@@ -1,32 +1,41 @@
 import { z } from "zod";
 import { cropKeys } from "./crops.ts";
 
-/** What may stand in the address of a list of operations. A wrong or missing part falls back; nothing typed is an error. */
+/** Whether mail about surveys gets to an operation, and why not. */
+export const mailStates = ["any", "reachable", "none", "returned", "stopped"] as const;
+/** In which season somebody last answered, counted from the newest in which anything was asked. */
+export const answeredWhens = ["any", "this", "last", "not_this", "not_two", "never"] as const;
+
+/**
+ * `?q=&state=&district=&crop=&answered=&mail=&sort=&direction=&page=`: what may stand in the address of the list of growers.
+ * A wrong or missing part falls back; nothing typed is an error.
+ */
 export const OperationQuery = z.object({
 	q: z.string().trim().max(100).catch(""),
-	stateFips: z
+	state: z
 		.string()
 		.regex(/^\d{2}$/)
 		.nullable()
 		.catch(null),
-	cropKey: z.enum(cropKeys).nullable().catch(null),
+	district: z
+		.string()
+		.regex(/^[A-Z]{2}-\w{1,20}$/)
+		.nullable()
+		.catch(null),
+	crop: z.enum(cropKeys).nullable().catch(null),
+	answered: z.enum(answeredWhens).catch("any"),
+	mail: z.enum(mailStates).catch("any"),
 	sort: z.enum(["name", "owner", "county", "trees"]).catch("name"),
 	direction: z.enum(["asc", "desc"]).catch("asc"),
 	page: z.coerce.number().int().min(1).max(100_000).catch(1),
 });
 export type OperationQuery = z.infer<typeof OperationQuery>;
 
-/** Reads a query from an address: `?q=&state=&crop=&sort=&direction=&page=`. */
-export function readOperationQuery(search: URLSearchParams): OperationQuery {
-	const get = (name: string) => search.get(name) || null;
-	return OperationQuery.parse({
-		q: get("q") ?? "",
-		stateFips: get("state"),
-		cropKey: get("crop"),
-		sort: get("sort"),
-		direction: get("direction"),
-		page: get("page") ?? 1,
-	});
+/** The parts of a query that differ from the plain list, as they stand in its address. The page is no part of a view. */
+export function queryParts({ page: _, ...query }: OperationQuery): Record<string, string> {
+	const plain: Record<string, unknown> = OperationQuery.parse({});
+	const told = Object.entries(query).filter(([name, value]) => value !== null && value !== plain[name]);
+	return Object.fromEntries(told.map(([name, value]) => [name, String(value)]));
 }
 
 const text = (max: number) => z.string({ error: "empty" }).trim().min(1, "empty").max(max, "too_long");

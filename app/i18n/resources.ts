@@ -2,6 +2,7 @@ import enCommon from "#locales/en/common.json" with { type: "json" };
 import enDataroom from "#locales/en/dataroom.json" with { type: "json" };
 import enDesk from "#locales/en/desk.json" with { type: "json" };
 import enGrower from "#locales/en/grower.json" with { type: "json" };
+import enGrowers from "#locales/en/growers.json" with { type: "json" };
 import enMail from "#locales/en/mail.json" with { type: "json" };
 import enNetwork from "#locales/en/network.json" with { type: "json" };
 import enOrchard from "#locales/en/orchard.json" with { type: "json" };
@@ -11,6 +12,7 @@ import esCommon from "#locales/es/common.json" with { type: "json" };
 import esDataroom from "#locales/es/dataroom.json" with { type: "json" };
 import esDesk from "#locales/es/desk.json" with { type: "json" };
 import esGrower from "#locales/es/grower.json" with { type: "json" };
+import esGrowers from "#locales/es/growers.json" with { type: "json" };
 import esMail from "#locales/es/mail.json" with { type: "json" };
 import esNetwork from "#locales/es/network.json" with { type: "json" };
 import esOrchard from "#locales/es/orchard.json" with { type: "json" };
@@ -24,6 +26,7 @@ export const resources = {
 		dataroom: enDataroom,
 		desk: enDesk,
 		grower: enGrower,
+		growers: enGrowers,
 		mail: enMail,
 		network: enNetwork,
 		orchard: enOrchard,
@@ -35,6 +38,7 @@ export const resources = {
 		dataroom: esDataroom,
 		desk: esDesk,
 		grower: esGrower,
+		growers: esGrowers,
 		mail: esMail,
 		network: esNetwork,
 		orchard: esOrchard,

@@ -12,7 +12,7 @@ import { createPersonalLink, findLink } from "#app/collect/personal-link.server.
 import type { AnswerPlace } from "#app/collect/responses.server.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
 import { OperationQuery } from "#app/directory/operation.schema.ts";
-import { listOperations } from "#app/directory/operations.server.ts";
+import { listOperations } from "#app/directory/operation-list.server.ts";
 import { action } from "#app/routes/grower/leave.tsx";
 import { leave } from "#app/routes/grower/parts/leaving.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";

@@ -2,7 +2,7 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { listOperations } from "#app/directory/operations.server.ts";
+import { listOperations } from "#app/directory/operation-list.server.ts";
 import { OperationQuery } from "#app/directory/operation.schema.ts";
 import { findOwnPlace, moveOperation, removePin } from "#app/directory/own-place.server.ts";
 import type { Pin } from "#app/lib/geography/pin.ts";

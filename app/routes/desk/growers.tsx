@@ -1,68 +1,86 @@
 import { useTranslation } from "react-i18next";
-import { href, Link } from "react-router";
+import { data, Form, href, redirect } from "react-router";
+import { z } from "zod";
 import type { Route } from "./+types/growers";
 import { requireAssociate } from "#app/auth/guard.server.ts";
-import { DataTable } from "#app/components/data-table.tsx";
-import { EmptyState } from "#app/components/empty-state.tsx";
+import { sessionContext } from "#app/auth/session.server.ts";
+import { answeredCondition, listLastAnswers } from "#app/collect/last-answers.server.ts";
+import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Paging } from "#app/components/paging.tsx";
-import { SearchBar } from "#app/components/search-bar.tsx";
-import { OperationQuery } from "#app/directory/operation.schema.ts";
-import { listOperations } from "#app/directory/operations.server.ts";
-import { useFormat } from "#app/i18n/use-format.ts";
+import { listAreas } from "#app/directory/areas.server.ts";
+import { OperationQuery, queryParts } from "#app/directory/operation.schema.ts";
+import { listOperations } from "#app/directory/operation-list.server.ts";
+import { dropView, listSavedViews, saveView } from "#app/directory/saved-views.server.ts";
+import { parseForm } from "#app/lib/parse-form.ts";
+import { ChooseGrowers } from "./parts/growers/choose-growers.tsx";
+import { GrowerFilters } from "./parts/growers/grower-filters.tsx";
+import { GrowerTable } from "./parts/growers/grower-table.tsx";
+import { SavedViews } from "./parts/growers/saved-views.tsx";
 
 export async function loader({ context, request }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
 	const query = OperationQuery.parse(Object.fromEntries(new URL(request.url).searchParams));
-	return { ...(await desk.transaction((trx) => listOperations(trx, desk.viewer, query))), query };
+	const { viewer } = desk;
+	return desk.transaction(async (trx) => {
+		const list = await listOperations(trx, viewer, query, answeredCondition(query.answered));
+		const answered = await listLastAnswers(
+			trx,
+			list.rows.map(({ operationId }) => operationId),
+		);
+		const areas = await listAreas(trx, viewer.stateFips);
+		return {
+			...list,
+			rows: list.rows.map((row) => ({ ...row, answeredAt: answered.get(row.operationId) ?? null })),
+			query,
+			parts: queryParts(query),
+			views: await listSavedViews(trx, viewer),
+			districts: areas.filter(({ kind }) => kind === "district"),
+			states: viewer.stateFips,
+		};
+	});
 }
 
-export default function Growers({ loaderData }: Route.ComponentProps) {
-	const { rows, total, page, pageCount, query } = loaderData;
-	const { t } = useTranslation("desk");
-	const format = useFormat();
+const ViewForm = z.discriminatedUnion("step", [
+	z.object({ step: z.literal("save"), name: z.string({ error: "empty" }).trim().min(1, "empty").max(80, "too_long") }),
+	z.object({ step: z.literal("drop"), savedViewId: z.guid() }),
+]);
+
+/** Keeps the filters of the address as a view, or takes a view away. */
+export async function action({ context, request }: Route.ActionArgs) {
+	const desk = requireAssociate(context);
+	const form = parseForm(ViewForm, await request.formData());
+	if (!form.ok) return data({ values: form.values, problems: form.problems }, { status: 400 });
+	const { value: step, values } = form;
+	const { search, searchParams } = new URL(request.url);
+	const outcome = await desk.transaction(async (trx) => {
+		if (step.step === "drop") return dropView(trx, desk.viewer, step.savedViewId);
+		const query = OperationQuery.parse(Object.fromEntries(searchParams));
+		return saveView(trx, desk.viewer, { name: step.name, query });
+	});
+	if (outcome === "too_many")
+		return data({ values, problems: [{ field: "name", code: "views_too_many" }] }, { status: 400 });
+	const key = step.step === "save" ? "growers:views.saved" : "growers:views.dropped";
+	context.get(sessionContext).flash("toast", { key });
+	return redirect(`${href("/desk/growers")}${search}`, 303);
+}
+
+export default function Growers({ loaderData, actionData }: Route.ComponentProps) {
+	const { rows, total, page, pageCount, query, views, parts } = loaderData;
+	const { t } = useTranslation("growers");
 	return (
-		<Page title={t("growers.title")} lead={t("growers.lead")}>
-			<SearchBar label={t("growers.search")} defaultValue={query.q} />
-			<DataTable
-				caption={t("growers.title")}
-				captionHidden
-				rows={rows}
-				rowKey={(row) => row.operationId}
-				sort={{ key: query.sort, direction: query.direction }}
-				columns={[
-					{
-						key: "name",
-						header: t("growers.name"),
-						sortable: true,
-						cell: ({ operationId, name }) => (
-							<Link to={href("/desk/growers/:operationId", { operationId })} className="print-plain">
-								{name}
-							</Link>
-						),
-					},
-					{ key: "owner", header: t("growers.contact"), sortable: true, cell: (row) => row.contactName },
-					{
-						key: "county",
-						header: t("common:areaKind.county"),
-						sortable: true,
-						cell: (row) => t("growers.county", { county: row.countyName, state: row.statePostal }),
-					},
-					{
-						key: "crops",
-						header: t("survey.crops"),
-						cell: (row) => format.list(row.cropKeys.map((crop) => t(`common:crop.${crop}`))),
-					},
-					{
-						key: "trees",
-						header: t("growers.trees"),
-						numeric: true,
-						sortable: true,
-						cell: (row) => format.number(row.bearingTrees),
-					},
-				]}
-				empty={<EmptyState title={t("growers.emptyTitle")}>{t("growers.emptyBody")}</EmptyState>}
-			/>
+		<Page title={t("desk:growers.title")} lead={t("desk:growers.lead")}>
+			<ErrorSummary problems={actionData?.problems} labels={{ name: t("views.name") }} />
+			<GrowerFilters {...loaderData} />
+			<SavedViews views={views} parts={parts} values={actionData?.values} problems={actionData?.problems} />
+			<Form method="get" action={href("/desk/growers/chosen")}>
+				{Object.entries(parts).map(([name, value]) => (
+					<input key={name} type="hidden" name={name} value={value} />
+				))}
+				<input type="hidden" name="page" value={page} />
+				<GrowerTable rows={rows} query={query} />
+				{rows.length > 0 && <ChooseGrowers shown={rows.length} total={total} />}
+			</Form>
 			<Paging page={page} pageCount={pageCount} total={total} />
 		</Page>
 	);

@@ -92,6 +92,7 @@ function About({ event }: { event: LoggedEvent }) {
 		told.slug,
 		told.operations !== undefined && t("log.operations", count(told.operations)),
 		told.queued !== undefined && t("log.queued", count(told.queued)),
+		told.growers !== undefined && t("log.growers", count(told.growers)),
 		told.to && t("log.to", { moment: format.moment(told.to) }),
 	].filter((line) => typeof line === "string");
 	return lines.map((line) => (
