@@ -16,7 +16,7 @@ export async function countMailings(trx: Trx, viewer: Associate, surveyId: strin
 		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
 		.where("f.survey_id", "=", surveyId)
 		.where("f.state_fips", "in", viewer.stateFips)
-		.$if(only !== undefined, (rows) => rows.where((eb) => eb("f.operation_id", "=", eb.fn.any(eb.val(only!)))))
+		.$if(only !== undefined, (rows) => rows.where(sql<boolean>`f.operation_id = any (${only}::uuid[])`))
 		.select([
 			sql<number>`count(*) filter (where ${awaited} and not ${invited})`.as("toInvite"),
 			sql<number>`count(*) filter (where ${awaited} and ${wasInvited})`.as("toRemind"),

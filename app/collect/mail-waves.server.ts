@@ -52,7 +52,7 @@ export async function queueWave(trx: Trx, { surveyId, kind, wave, states, queued
 				.where("f.survey_id", "=", surveyId)
 				.$if(states !== "all", (query) => query.where("f.state_fips", "in", [...states]))
 				.where(recipients[kind])
-				.$if(only !== undefined, (query) => query.where((eb) => eb("f.operation_id", "=", eb.fn.any(eb.val(only!)))))
+				.$if(only !== undefined, (query) => query.where(sql<boolean>`f.operation_id = any (${only}::uuid[])`))
 				.orderBy("f.operation_id")
 				.select([
 					"f.survey_id",

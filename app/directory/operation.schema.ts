@@ -32,9 +32,11 @@ export const OperationQuery = z.object({
 export type OperationQuery = z.infer<typeof OperationQuery>;
 
 /** The parts of a query that differ from the plain list, as they stand in its address. The page is no part of a view. */
-export function queryParts({ page: _, ...query }: OperationQuery): Record<string, string> {
+export function queryParts(query: OperationQuery): Record<string, string> {
 	const plain: Record<string, unknown> = OperationQuery.parse({});
-	const told = Object.entries(query).filter(([name, value]) => value !== null && value !== plain[name]);
+	const told = Object.entries(query).filter(
+		([name, value]) => name !== "page" && value !== null && value !== plain[name],
+	);
 	return Object.fromEntries(told.map(([name, value]) => [name, String(value)]));
 }
 

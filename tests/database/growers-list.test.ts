@@ -131,11 +131,11 @@ describe("the list", () => {
 	});
 });
 
-describe("a saved view", () => {
-	const keep = (viewer: Associate, name: string, parts: Record<string, string>) =>
-		asDesk(viewer, (trx) => saveView(trx, viewer, { name, query: OperationQuery.parse(parts) }));
-	const views = (viewer: Associate) => asDesk(viewer, (trx) => listSavedViews(trx, viewer));
+const keep = (viewer: Associate, name: string, parts: Record<string, string>) =>
+	asDesk(viewer, (trx) => saveView(trx, viewer, { name, query: OperationQuery.parse(parts) }));
+const views = (viewer: Associate) => asDesk(viewer, (trx) => listSavedViews(trx, viewer));
 
+describe("a saved view", () => {
 	test("keeps what differs from the plain list, and not the page", async () => {
 		const viewer = await addPerson(owner, "Keeper", ["19"]);
 		await keep(viewer, "Plums", { crop: "plum", mail: "none", sort: "name", direction: "desc", page: "7" });
@@ -167,12 +167,10 @@ describe("a saved view", () => {
 	});
 });
 
-describe("chosen growers", () => {
-	const choose = (viewer: Associate, search: string) =>
-		asDesk(viewer, (trx) =>
-			listChosen(trx, viewer, readChoice(`https://survey.example/desk/growers/chosen?${search}`)),
-		);
+const choose = (viewer: Associate, search: string) =>
+	asDesk(viewer, (trx) => listChosen(trx, viewer, readChoice(`https://survey.example/desk/growers/chosen?${search}`)));
 
+describe("chosen growers", () => {
 	test("are those ticked, on the page, or in the list, and of granted states only", async () => {
 		const mine = await addOperation(owner, { state: "19", name: "Chosen one" });
 		const other = await addOperation(owner, { state: "55", name: "Chosen beyond" });

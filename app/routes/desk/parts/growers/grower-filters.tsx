@@ -5,6 +5,8 @@ import type { Area } from "#app/directory/areas.server.ts";
 import { cropKeys } from "#app/directory/crops.ts";
 import { answeredWhens, mailStates, type OperationQuery } from "#app/directory/operation.schema.ts";
 
+const all = (label: string): Option => ({ value: "", label });
+
 type GrowerFiltersProps = { query: OperationQuery; states: string[]; districts: Area[] };
 
 /** What the list is narrowed to, sent by GET so that a link or a view keeps it. */
@@ -21,7 +23,6 @@ export function GrowerFilters({ query, states, districts }: GrowerFiltersProps) 
 			options={options}
 		/>
 	);
-	const all = (label: string): Option => ({ value: "", label });
 	return (
 		<SearchBar key={query.q} label={t("filter.search")} defaultValue={query.q}>
 			{states.length > 1 &&

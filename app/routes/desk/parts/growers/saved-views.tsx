@@ -13,11 +13,12 @@ type SavedViewsProps = {
 	problems?: Problem[];
 };
 
+const addressOf = (view: SavedView) => new URLSearchParams(view.parts).toString();
+
 /** The person's own views, each a link, and a form that keeps what is shown now as another. */
 export function SavedViews({ views, parts, values, problems }: SavedViewsProps) {
 	const { t } = useTranslation("growers");
 	const shown = new URLSearchParams(parts).toString();
-	const addressOf = (view: SavedView) => new URLSearchParams(view.parts).toString();
 	return (
 		<div className="no-print mb-5">
 			{views.length > 0 && (
