@@ -192,9 +192,6 @@ export const Measure = z.object({
 	protects: z.array(Key).optional(),
 });
 export type Measure = z.infer<typeof Measure>;
-/** A measure that is estimated from sums; one of days is from its histogram. */
-export type SummedMeasure = Measure & { kind: Exclude<Measure["kind"], "day"> };
-export const isSummed = (measure: Measure): measure is SummedMeasure => measure.kind !== "day";
 
 export const FormDefinition = z
 	.object({

@@ -42,8 +42,7 @@ export async function findOwnFacts(trx: Trx, viewer: Grower, surveyId: string) {
 }
 
 /**
- * A total says nothing beside that of a whole county, so it is left out; so are days, which no release tells yet, and
- * quantities that are made for protection alone.
+ * A total says nothing beside that of a whole county, so it is left out; so are quantities that are made for protection alone.
  */
 async function listFigures(trx: Trx, surveyId: string, operationId: string, measures: Measure[]) {
 	const facts = await trx
@@ -54,7 +53,7 @@ async function listFigures(trx: Trx, surveyId: string, operationId: string, meas
 		.where("crop_key", "!=", "all")
 		.execute();
 	return measures
-		.filter(({ kind, base }) => kind !== "total" && kind !== "day" && !base)
+		.filter(({ kind, base }) => kind !== "total" && !base)
 		.flatMap(({ key, kind, scale }) =>
 			facts.flatMap(({ measure_key, crop_key, y, x }): OwnFigure[] =>
 				measure_key !== key || y === null || !x

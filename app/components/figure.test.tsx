@@ -7,7 +7,13 @@ import { resources } from "#app/i18n/resources.ts";
 import { i18nextSettings } from "#app/i18n/settings.ts";
 import { Figure, type FigureProps } from "./figure.tsx";
 
-const loss: FigureProps = { status: "shown", value: 62, lower: 57, upper: 67, unit: "percent", decimals: 0 };
+const loss: FigureProps = {
+	status: "shown",
+	value: 62,
+	lower: 57,
+	upper: 67,
+	measure: { unit: "percent", decimals: 0, season: 2024 },
+};
 
 /** What a reader of the language sees, without the markup. */
 async function seen(language: Language, figure: FigureProps): Promise<string> {
@@ -31,4 +37,32 @@ test("a headline says its likely range as a sentence, and a cell as a range", as
 test("a withheld figure shows its one word and never a number", async () => {
 	expect(await seen("en", { ...loss, status: "withheld" })).toBe("|Withheld|");
 	expect(await seen("es", { ...loss, status: "withheld" })).toBe("|Confidencial|");
+});
+
+const bloom: FigureProps = {
+	status: "shown",
+	value: 115,
+	lower: 113,
+	upper: 122,
+	quartiles: { first: 112, third: 121 },
+	measure: { unit: "day", decimals: 0, season: 2024 },
+};
+
+test("a day of the year is a date of its season, never a number", async () => {
+	expect(await seen("en", bloom)).toBe(
+		"|April 24|April 22 to May 1|Half of the growers between April 21 and April 30|",
+	);
+	expect(await seen("es", bloom)).toBe(
+		"|24 de abril|del 22 de abril al 1 de mayo|La mitad de los productores entre el 21 de abril y el 30 de abril|",
+	);
+	const common = { ...bloom, measure: { ...bloom.measure, season: 2025 } };
+	expect(await seen("en", common)).toContain("|April 25|April 23 to May 2|");
+	expect(await seen("en", { ...bloom, size: "headline" })).toContain("|Likely between April 22 and May 1|");
+	expect(await seen("es", { ...bloom, size: "headline" })).toContain(
+		"|Probablemente entre el 22 de abril y el 1 de mayo|",
+	);
+});
+
+test("of a withheld day no date is left", async () => {
+	expect(await seen("en", { ...bloom, status: "withheld" })).toBe("|Withheld|");
 });

@@ -1,6 +1,6 @@
 import { useTranslation } from "react-i18next";
 import { useFormat } from "#app/i18n/use-format.ts";
-import type { Unit } from "#app/lib/format.ts";
+import type { FigureShape } from "#app/lib/format.ts";
 import { classes } from "./classes.ts";
 
 export type FigureProps = {
@@ -9,8 +9,9 @@ export type FigureProps = {
 	value?: number | null;
 	lower?: number | null;
 	upper?: number | null;
-	unit: Unit;
-	decimals: number;
+	/** Of a day of the year: when a quarter and three quarters were there. */
+	quartiles?: { first: number; third: number } | null;
+	measure: FigureShape;
 	steadiness?: "steady" | "care" | "rough" | null;
 	size?: "cell" | "headline";
 };
@@ -19,25 +20,28 @@ export type FigureProps = {
 export function Figure(props: FigureProps) {
 	const { t } = useTranslation();
 	const format = useFormat();
-	const { status, value, lower, upper, unit, decimals, steadiness, size = "cell" } = props;
+	const { status, value, lower, upper, quartiles, measure, steadiness, size = "cell" } = props;
 	if (status !== "shown" || value === null || value === undefined) return <NoFigure {...props} />;
 	const headline = size === "headline";
 	const bounds =
 		typeof lower === "number" && typeof upper === "number"
-			? t(headline ? "figure.likely" : "figure.interval", {
-					lower: format.number(lower, decimals),
-					upper: format.quantity(upper, unit, decimals),
-				})
+			? headline
+				? t("figure.likely", format.ends(lower, upper, measure))
+				: format.range(lower, upper, measure)
 			: "";
+	const quiet = classes("block text-quiet", headline ? "mt-1 text-base" : "text-xs");
 	return (
 		<span className={headline ? "block" : undefined}>
 			<strong className={headline ? "block text-numeral tracking-tight" : "font-bold"}>
-				{format.quantity(value, unit, decimals)}
+				{format.figure(value, measure)}
 			</strong>
 			{bounds && (
 				<span className={classes("text-quiet", headline ? "mt-2 block text-lg" : "ml-2 whitespace-nowrap text-xs")}>
 					{bounds}
 				</span>
+			)}
+			{quartiles && (
+				<span className={quiet}>{t("figure.half", format.ends(quartiles.first, quartiles.third, measure))}</span>
 			)}
 			{steadiness && (headline || steadiness !== "steady") && (
 				<span

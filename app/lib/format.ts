@@ -1,11 +1,16 @@
 import type { TFunction } from "i18next";
+import { dateOfDay } from "./day-of-year.ts";
 
 /** Units of published figures, and those in which growers tell their answers. */
 export type Unit =
 	| ("percent" | "percent_of_normal" | "lb_per_tree" | "lb" | "trees" | "operations" | "score")
 	| ("kg" | "tons" | "bushels" | "half_bushels" | "pecks" | "dry_quarts" | "crates")
 	| ("acres" | "hectares" | "fahrenheit" | "celsius" | "row_feet" | "row_meters" | "tree" | "bush")
-	| ("count" | "day");
+	| ("count" | "days");
+/** The unit of a measure; `day` is a day of the year, which is told as a date. */
+export type MeasureUnit = Unit | "day";
+/** How a measure's figures are told. The season is the year whose dates its days are. */
+export type FigureShape = { unit: MeasureUnit; decimals: number; season: number };
 
 /** The locale of numbers and dates. es-US, as Spanish speakers in the states read decimal points and not commas. */
 function localeOf(language: string): "en-US" | "es-US" {
@@ -22,11 +27,38 @@ export function formatterFor(language: string, t: TFunction) {
 		new Intl.NumberFormat(locale, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
 	const date = (value: Date | string, options: Intl.DateTimeFormatOptions) =>
 		new Intl.DateTimeFormat(locale, options).format(typeof value === "string" ? new Date(value) : value);
+	const quantity = (value: number, unit: Unit, decimals = 0) =>
+		t(`common:unit.${unit}`, { value: number(value, decimals), count: value });
+	/** "April 24"; a day that the year does not have stays a number. */
+	const dayOfSeason = (day: number, season: number) => {
+		const on = dateOfDay(season, day);
+		return on === null
+			? t("common:unit.day", { value: number(day, 0) })
+			: date(`${on}T12:00:00Z`, { day: "numeric", month: "long", timeZone: "UTC" });
+	};
+	const figure = (value: number, { unit, decimals, season }: FigureShape) =>
+		unit === "day" ? dayOfSeason(value, season) : quantity(value, unit, decimals);
 	return {
 		number,
 		/** A value with its unit, as in "38%" or "12.4 lb per tree or bush". */
-		quantity: (value: number, unit: Unit, decimals = 0) =>
-			t(`common:unit.${unit}`, { value: number(value, decimals), count: value }),
+		quantity,
+		/** A measure's value: a quantity, or the date of a day. */
+		figure,
+		/** Two values as one range, as in "35 to 41%" or "April 22 to April 27". */
+		range: (lower: number, upper: number, shape: FigureShape) =>
+			shape.unit === "day"
+				? t("common:figure.days", { lower: figure(lower, shape), upper: figure(upper, shape) })
+				: t("common:figure.interval", { lower: number(lower, shape.decimals), upper: figure(upper, shape) }),
+		/** The two ends of a range for a sentence that says "between" them. */
+		ends: (lower: number, upper: number, shape: FigureShape) => {
+			const said = (value: number) => t("common:figure.dayInWords", { day: figure(value, shape) });
+			return shape.unit === "day"
+				? { lower: said(lower), upper: said(upper) }
+				: { lower: number(lower, shape.decimals), upper: figure(upper, shape) };
+		},
+		/** How far a value can be off, a digit finer than the value itself: plain, or in days. */
+		spread: (value: number, { unit, decimals }: FigureShape) =>
+			unit === "day" ? quantity(value, "days", 1) : number(value, decimals + 1),
 		/** A stored day (2026-05-04, no time zone) with the month in words. */
 		day: (value: string) =>
 			date(`${value}T12:00:00Z`, { day: "numeric", month: "long", year: "numeric", timeZone: "UTC" }),

@@ -1,7 +1,14 @@
 import { expect, test } from "vitest";
 import { type Cell, lookOf, orderCells } from "./cell.ts";
 
-const blank = { kind: "county", stateFips: "19", lower: null, upper: null, respondentsBand: null } as const;
+const blank = {
+	kind: "county",
+	stateFips: "19",
+	lower: null,
+	upper: null,
+	quartiles: null,
+	respondentsBand: null,
+} as const;
 function cell(areaName: string, fields: Partial<Cell>): Cell {
 	return { ...blank, areaKey: areaName, areaName, status: "shown", value: null, steadiness: null, ...fields };
 }

@@ -18,6 +18,8 @@ export type Cell = {
 	value: number | null;
 	lower: number | null;
 	upper: number | null;
+	/** Of a day of the year alone. */
+	quartiles: { first: number; third: number } | null;
 	steadiness: Steadiness | null;
 	respondentsBand: string | null;
 };

@@ -103,6 +103,8 @@ function selectCells(db: Reader, releaseId: string, measureKeys: string[]) {
 			"figure.value",
 			"figure.lower_bound",
 			"figure.upper_bound",
+			"figure.first_quartile",
+			"figure.third_quartile",
 			"figure.steadiness",
 		])
 		.where("cell.release_id", "=", releaseId)
@@ -130,7 +132,12 @@ function toCell(row: CellRow): Cell {
 		value: shown ? row.value : null,
 		lower: shown ? row.lower_bound : null,
 		upper: shown ? row.upper_bound : null,
+		quartiles: shown ? quartilesOf(row) : null,
 		steadiness: shown ? (row.steadiness as Steadiness | null) : null,
 		respondentsBand: shown ? row.respondents_band : null,
 	};
+}
+
+function quartilesOf({ first_quartile: first, third_quartile: third }: CellRow): Cell["quartiles"] {
+	return first === null || third === null ? null : { first, third };
 }

@@ -43,6 +43,7 @@ test("a withheld cell takes no part in the classes, even if a number came with i
 		stateFips: "19",
 		lower: null,
 		upper: null,
+		quartiles: null,
 		respondentsBand: null,
 	} as const;
 	const cells = [

@@ -29,6 +29,9 @@ export async function listDataRows(releaseId: string): Promise<DataRow[]> {
 			"f.cv",
 			"f.lower_bound as lower",
 			"f.upper_bound as upper",
+			"f.first_quartile as firstQuartile",
+			"f.third_quartile as thirdQuartile",
+			"m.unit",
 			"c.respondents_band as respondentsBand",
 			"f.steadiness",
 		])

@@ -15,6 +15,9 @@ const shown: DataRow = {
 	cv: 0.417,
 	lower: -6,
 	upper: 0,
+	firstQuartile: null,
+	thirdQuartile: null,
+	unit: "percent",
 	respondentsBand: "5-9",
 	steadiness: "care",
 };
@@ -24,6 +27,8 @@ const nothing = {
 	cv: null,
 	lower: null,
 	upper: null,
+	firstQuartile: null,
+	thirdQuartile: null,
 	respondentsBand: null,
 	steadiness: null,
 };
@@ -73,4 +78,31 @@ test("lines end in CRLF, and text that would run as a formula is disarmed while 
 		],
 	);
 	expect(csv).toBe("name,n\r\n'=HYPERLINK(1),-5\r\n'+1,2\r\n'@x,\r\n");
+});
+
+test("a day of the year stands there as a number and as a date of its season, also in a leap year", () => {
+	const day = { ...shown, unit: "day", value: 121, lower: 60, upper: 124, firstQuartile: 118, thirdQuartile: 123 };
+	const dates = (season: number) => {
+		const csv = cellsCsv({ number: 7, season }, [
+			{ ...day, cv: null },
+			shown,
+			{ ...day, ...nothing, cellStatus: "withheld" },
+		]);
+		return (parse(csv, { columns: true }) as Record<string, string>[]).map((row) => [
+			row.value,
+			row.value_date,
+			row.lower_date,
+			row.upper_date,
+			row.first_quartile,
+			row.first_quartile_date,
+			row.third_quartile_date,
+		]);
+	};
+	const none = Array<string>(4).fill("");
+	expect(dates(2024)).toEqual([
+		["121", "2024-04-30", "2024-02-29", "2024-05-03", "118", "2024-04-27", "2024-05-02"],
+		["-3", "", "", ...none],
+		["", "", "", ...none],
+	]);
+	expect(dates(2025)[0]).toEqual(["121", "2025-05-01", "2025-03-01", "2025-05-04", "118", "2025-04-28", "2025-05-03"]);
 });

@@ -1,4 +1,5 @@
 import { stringify } from "csv-stringify/sync";
+import { dateOfDay } from "#app/lib/day-of-year.ts";
 
 /** One row a cell and measure, as researchers get it. Codes are text, so that a county code keeps its zeros. */
 export type DataRow = {
@@ -14,6 +15,10 @@ export type DataRow = {
 	cv: number | null;
 	lower: number | null;
 	upper: number | null;
+	firstQuartile: number | null;
+	thirdQuartile: number | null;
+	/** Of the measure; the numbers of `day` are days of the season's year. */
+	unit: string;
 	respondentsBand: string | null;
 	steadiness: "steady" | "care" | "rough" | null;
 };
@@ -45,6 +50,13 @@ const columns = [
 	"cv",
 	"lower",
 	"upper",
+	"first_quartile",
+	"third_quartile",
+	"value_date",
+	"lower_date",
+	"upper_date",
+	"first_quartile_date",
+	"third_quartile_date",
 	"respondents_band",
 	"steadiness",
 	"status",
@@ -59,6 +71,8 @@ export function cellsCsv(release: { number: number; season: number }, rows: read
 		rows.map((row) => {
 			const shown = row.cellStatus === "shown" && row.steadiness !== "rough";
 			const number = (value: number | null) => (shown ? value : null);
+			const date = (day: number | null) =>
+				shown && row.unit === "day" && day !== null ? dateOfDay(release.season, day) : null;
 			return [
 				release.number,
 				release.season,
@@ -73,6 +87,13 @@ export function cellsCsv(release: { number: number; season: number }, rows: read
 				number(row.cv),
 				number(row.lower),
 				number(row.upper),
+				number(row.firstQuartile),
+				number(row.thirdQuartile),
+				date(row.value),
+				date(row.lower),
+				date(row.upper),
+				date(row.firstQuartile),
+				date(row.thirdQuartile),
 				row.respondentsBand,
 				row.steadiness,
 				observationStatus(row),

@@ -9,14 +9,14 @@ export function leadingMeasure(measures: ReleaseMeasure[]): ReleaseMeasure | und
 	return measures.find((measure) => measure.worse !== null) ?? measures[0];
 }
 
-/** The crops with a number, worst first; "all" is no crop and stays out. */
+/** The crops with a number, worst first, and of days the earliest first; "all" is no crop and stays out. */
 export function worstFirst(measure: ReleaseMeasure, cells: CropCell[]): Finding["cell"][] {
-	const turn = measure.worse === "less" ? -1 : 1;
+	const turn = measure.worse === "less" || measure.kind === "day" ? 1 : -1;
 	return cells
 		.filter(
 			(cell): cell is Finding["cell"] => cell.cropKey !== "all" && lookOf(cell) === "number" && cell.value !== null,
 		)
-		.toSorted((a, b) => turn * (b.value - a.value) || a.cropKey.localeCompare(b.cropKey));
+		.toSorted((a, b) => turn * (a.value - b.value) || a.cropKey.localeCompare(b.cropKey));
 }
 
 export function findingOf(measure: ReleaseMeasure | undefined, cells: CropCell[]): Finding | null {

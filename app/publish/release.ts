@@ -1,10 +1,17 @@
 import { z } from "zod";
-import type { Unit } from "#app/lib/format.ts";
+import type { FigureShape } from "#app/lib/format.ts";
 import { Words } from "#app/lib/words.ts";
 
 /** The settings that a release was made with, as frozen in it. A setting that an older release did not record is absent. */
 const Rules = z
-	.object({ minimumOwners: z.number(), dominancePercent: z.number(), steadyCv: z.number(), careCv: z.number() })
+	.object({
+		minimumOwners: z.number(),
+		dominancePercent: z.number(),
+		steadyCv: z.number(),
+		careCv: z.number(),
+		steadyDays: z.number(),
+		careDays: z.number(),
+	})
 	.partial();
 const Counted = z.object({ asked: z.number(), answered: z.number() });
 const Method = z
@@ -31,13 +38,11 @@ export type Release = {
 	checksum: string;
 };
 
-export type ReleaseMeasure = {
+export type ReleaseMeasure = FigureShape & {
 	key: string;
 	label: Words;
 	description: Words;
 	kind: "ratio" | "mean" | "total" | "proportion" | "day";
-	unit: Unit;
-	decimals: number;
 	worse: "more" | "less" | null;
 	hue: Hue;
 };

@@ -29,9 +29,10 @@ export async function findLatestRelease(db: Reader = reader()): Promise<Release 
 /** The measures of a release, in its own order. */
 export async function listMeasures(releaseId: string, db: Reader = reader()): Promise<ReleaseMeasure[]> {
 	const rows = await db
-		.selectFrom("release.measure")
-		.select(["measure_key", "label", "description", "kind", "unit", "decimals", "worse", "hue"])
-		.where("release_id", "=", releaseId)
+		.selectFrom("release.measure as measure")
+		.innerJoin("release.release as release", "release.release_id", "measure.release_id")
+		.select(["measure_key", "label", "description", "kind", "unit", "decimals", "worse", "hue", "release.season"])
+		.where("measure.release_id", "=", releaseId)
 		.orderBy("position")
 		.orderBy("measure_key")
 		.execute();
@@ -42,6 +43,7 @@ export async function listMeasures(releaseId: string, db: Reader = reader()): Pr
 		kind: row.kind as ReleaseMeasure["kind"],
 		unit: row.unit as ReleaseMeasure["unit"],
 		decimals: row.decimals,
+		season: row.season,
 		worse: row.worse as ReleaseMeasure["worse"],
 		hue: toHue(row.hue),
 	}));

@@ -17,7 +17,7 @@ import {
 	type ReportContent,
 } from "./report.ts";
 
-type Told = Pick<ReleaseMeasure, "label" | "unit" | "decimals" | "hue">;
+type Told = Pick<ReleaseMeasure, "label" | "unit" | "decimals" | "season" | "hue">;
 /** A figure looked up; null where the release holds no such figure. */
 export type ResolvedFigure = { measure: Told; cell: CropCell } | null;
 export type ResolvedPart = { kind: "text"; text: string } | { kind: "figure"; figure: ResolvedFigure };
@@ -113,7 +113,7 @@ function resolveFigure(reference: Reference, { measures, found }: Source): Resol
 	return measure && cell ? { measure: told(measure), cell } : null;
 }
 
-const told = ({ label, unit, decimals, hue }: ReleaseMeasure): Told => ({ label, unit, decimals, hue });
+const told = ({ label, unit, decimals, season, hue }: ReleaseMeasure): Told => ({ label, unit, decimals, season, hue });
 
 /** A published report as a list tells of it: its title and summary with their figures looked up. */
 export type ToldReport = Omit<ListedReport, "title" | "summary"> & { title: ResolvedWords; summary: ResolvedWords };

@@ -41,3 +41,9 @@ test("every count of three or more has one band that holds it, and fewer have no
 	}
 	expect(() => respondentsBand(2)).toThrow(RangeError);
 });
+
+test("a day keeps its quartiles unless it is rough, and its interval is whole days", () => {
+	const bloom = { ...figure, value: 115, cv: null, lower: 112, upper: 118, quartiles: { first: 111, third: 119 } };
+	expect(publishedFigure(bloom, 0)).toMatchObject({ value: 115, lower: 112, upper: 118, quartiles: bloom.quartiles });
+	expect(publishedFigure({ ...bloom, steadiness: "rough" }, 0)).not.toHaveProperty("quartiles");
+});

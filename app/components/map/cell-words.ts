@@ -1,13 +1,13 @@
 import { useTranslation } from "react-i18next";
 import { useFormat } from "#app/i18n/use-format.ts";
-import type { Unit } from "#app/lib/format.ts";
+import type { FigureShape } from "#app/lib/format.ts";
 import type { DrawnCell } from "./map-data.ts";
 
 /** "5-9" as it stands in the release, with the dash of print. */
 export const bandText = (band: string) => band.replace("-", "–");
 
 /** One area's figure as a sentence, for whoever hears the map instead of seeing it. */
-export function useCellWords(unit: Unit, decimals: number) {
+export function useCellWords(measure: FigureShape) {
 	const { t } = useTranslation("public");
 	const format = useFormat();
 	return (name: string, cell: DrawnCell | undefined): string => {
@@ -20,9 +20,8 @@ export function useCellWords(unit: Unit, decimals: number) {
 		return t("map.said.number", {
 			name,
 			band,
-			value: format.quantity(cell.value, unit, decimals),
-			lower: format.number(cell.lower ?? cell.value, decimals),
-			upper: format.quantity(cell.upper ?? cell.value, unit, decimals),
+			value: format.figure(cell.value, measure),
+			...format.ends(cell.lower ?? cell.value, cell.upper ?? cell.value, measure),
 			steadiness: t(`common:steadiness.${cell.steadiness ?? "care"}`),
 		});
 	};

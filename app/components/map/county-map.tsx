@@ -2,7 +2,7 @@ import { type KeyboardEvent, useEffect, useId, useRef, useState } from "react";
 import { useTranslation } from "react-i18next";
 import { Button } from "#app/components/button.tsx";
 import { classes } from "#app/components/classes.ts";
-import type { Unit } from "#app/lib/format.ts";
+import type { FigureShape } from "#app/lib/format.ts";
 import { useCellWords } from "./cell-words.ts";
 import type { Direction } from "./live-map.client.ts";
 import { mapKey, ZoomButtons } from "./map-keys.tsx";
@@ -12,8 +12,7 @@ import { useLiveMap } from "./use-live-map.ts";
 type CountyMapProps = Omit<StaticMapProps, "selected"> & {
 	countiesAddress: string;
 	figuresAddress: string;
-	unit: Unit;
-	decimals: number;
+	measure: FigureShape;
 	/** The area chosen on this page, by key. */
 	chosen: string | null;
 	/** The area that the reader points at elsewhere on the page, as in the table. */
@@ -24,9 +23,9 @@ type CountyMapProps = Omit<StaticMapProps, "selected"> & {
 
 /** The map of a page: drawn by the server at first, live once it can be; by pointer, finger and keyboard. */
 export function CountyMap(props: CountyMapProps) {
-	const { countiesAddress, figuresAddress, unit, decimals, chosen, pointed, nameOf, onChoose, ...drawn } = props;
+	const { countiesAddress, figuresAddress, measure, chosen, pointed, nameOf, onChoose, ...drawn } = props;
 	const { t } = useTranslation("public");
-	const words = useCellWords(unit, decimals);
+	const words = useCellWords(measure);
 	const hintId = useId();
 	const container = useRef<HTMLDivElement>(null);
 	const [hover, setHover] = useState<{ areaKey: string; x: number; y: number } | null>(null);

@@ -1,7 +1,7 @@
 import { type ReactNode, useId } from "react";
 import { useTranslation } from "react-i18next";
 import { useFormat } from "#app/i18n/use-format.ts";
-import type { Unit } from "#app/lib/format.ts";
+import type { FigureShape } from "#app/lib/format.ts";
 import { fillOf } from "./fills.ts";
 import type { DrawnCell, DrawnClass, Hue } from "./map-data.ts";
 import { MapPatterns } from "./patterns.tsx";
@@ -13,20 +13,17 @@ export type LegendProps = {
 	/** Areas on the map for which the survey asked nobody. */
 	notAsked: number;
 	hue: Hue;
-	unit: Unit;
-	decimals: number;
+	measure: FigureShape;
 };
 
 /** What each colour and sign stands for, with how many areas have it. */
-export function Legend({ title, cells, classes, notAsked, hue, unit, decimals }: LegendProps) {
+export function Legend({ title, cells, classes, notAsked, hue, measure }: LegendProps) {
 	const { t } = useTranslation("public");
 	const format = useFormat();
 	const id = useId();
 	const withLook = (look: DrawnCell["look"]) => cells.filter((cell) => cell.look === look).length;
 	const rangeOf = ({ from, to }: DrawnClass) =>
-		from === to
-			? format.quantity(from, unit, decimals)
-			: t("map.legend.range", { from: format.number(from, decimals), to: format.quantity(to, unit, decimals) });
+		from === to ? format.figure(from, measure) : format.range(from, to, measure);
 	const blank = withLook("no_growers");
 	const unasked = notAsked + withLook("no_figure");
 	return (

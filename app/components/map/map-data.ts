@@ -9,6 +9,7 @@ const Cell = z.object({
 	value: z.number().nullable().default(null),
 	lower: z.number().nullable().default(null),
 	upper: z.number().nullable().default(null),
+	quartiles: z.object({ first: z.number(), third: z.number() }).nullable().default(null),
 	steadiness: z.enum(["steady", "care", "rough"]).nullable().default(null),
 	respondentsBand: z.string().nullable().default(null),
 });

@@ -9,7 +9,7 @@ import { Section } from "#app/components/section.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
-import type { Unit } from "#app/lib/format.ts";
+import type { FigureShape } from "#app/lib/format.ts";
 
 type Words = { en: string; es: string };
 type ReportFigure = {
@@ -17,6 +17,7 @@ type ReportFigure = {
 	value: number | null;
 	lower: number | null;
 	upper: number | null;
+	quartiles?: { first: number; third: number };
 	steadiness: "steady" | "care" | "rough";
 };
 type ReportRow = {
@@ -39,14 +40,14 @@ export type DraftReportProps = {
 		seconds: number;
 		failures: unknown[];
 	};
-	rules: { minimumOwners: number; dominancePercent: number; steadyCv: number; careCv: number };
+	rules: Record<"minimumOwners" | "dominancePercent" | "steadyCv" | "careCv" | "steadyDays" | "careDays", number>;
 	asked: number;
 	answered: number;
 	setAside: number;
 	joinCount: number;
 	checksum: string | null;
 	counts: { kind: string; shown: number; withheld: number; noGrowers: number }[];
-	measures: { key: string; label: Words; unit: Unit; decimals: number }[];
+	measures: ({ key: string; label: Words } & FigureShape)[];
 	cropKeys: string[];
 	rows: ReportRow[];
 	choice: { crop: string; kind: string };
@@ -111,6 +112,8 @@ function AuditFacts({ audit, rules, asked, answered, setAside, joinCount, checks
 						percent: format.number(rules.dominancePercent),
 						steady: format.number(rules.steadyCv * 100),
 						care: format.number(rules.careCv * 100),
+						steadyDays: format.quantity(rules.steadyDays, "days"),
+						careDays: format.quantity(rules.careDays, "days"),
 					}),
 				},
 				{
@@ -207,7 +210,7 @@ function CellTable({ rows, measures, choice }: DraftReportProps) {
 			numeric: true,
 			cell: (row: ReportRow) => {
 				const figure = row.figures.find((one) => one.measureKey === measure.key);
-				return <Figure status={row.status} {...figure} unit={measure.unit} decimals={measure.decimals} />;
+				return <Figure status={row.status} {...figure} measure={measure} />;
 			},
 		})),
 	];

@@ -3,7 +3,7 @@ import { Link } from "react-router";
 import { type Column, DataTable } from "#app/components/data-table.tsx";
 import { Figure } from "#app/components/figure.tsx";
 import { bandText } from "#app/components/map/cell-words.ts";
-import type { Unit } from "#app/lib/format.ts";
+import type { FigureShape } from "#app/lib/format.ts";
 
 type Row = {
 	cropKey: string;
@@ -11,6 +11,7 @@ type Row = {
 	value: number | null;
 	lower: number | null;
 	upper: number | null;
+	quartiles: { first: number; third: number } | null;
 	steadiness: "steady" | "care" | "rough" | null;
 	respondentsBand: string | null;
 };
@@ -18,8 +19,7 @@ type CropTableProps = {
 	caption: string;
 	captionHidden?: boolean;
 	rows: Row[];
-	unit: Unit;
-	decimals: number;
+	measure: FigureShape;
 	linkTo?: (cropKey: string) => string;
 };
 
@@ -38,8 +38,7 @@ export function CropTable({ caption, captionHidden, rows, ...shown }: CropTableP
 }
 
 function useCropColumns({
-	unit,
-	decimals,
+	measure,
 	linkTo,
 }: Omit<CropTableProps, "caption" | "captionHidden" | "rows">): Column<Row>[] {
 	const { t } = useTranslation("public");
@@ -62,12 +61,7 @@ function useCropColumns({
 			key: "value",
 			header: t("map.table.value"),
 			cell: (row) => (
-				<Figure
-					{...row}
-					status={row.status === "shown" && !row.steadiness ? null : row.status}
-					unit={unit}
-					decimals={decimals}
-				/>
+				<Figure {...row} status={row.status === "shown" && !row.steadiness ? null : row.status} measure={measure} />
 			),
 		},
 		{

@@ -67,7 +67,7 @@ function FigureBlock({ block: { figure }, season }: Of<"figure">) {
 	const { measure, cell } = figure;
 	return (
 		<div className="my-6 break-inside-avoid border-y-2 border-line py-5">
-			<Figure {...cell} status={toldStatus(cell)} unit={measure.unit} decimals={measure.decimals} size="headline" />
+			<Figure {...cell} status={toldStatus(cell)} measure={measure} size="headline" />
 			<p className="mt-3">
 				{t("report.figureOf", { title: title(measure, cell.cropKey, season), area: areaName(cell) })}
 				{cell.respondentsBand && ` ${t("map.said.bandAlone", { band: bandText(cell.respondentsBand) })}`}
@@ -98,8 +98,7 @@ function MapBlock({ block, season, picture }: Of<"map"> & { picture: DrawnPictur
 					classes={classes}
 					notAsked={Object.keys(areaOfCounty).length - cells.length}
 					hue={measure.hue}
-					unit={measure.unit}
-					decimals={measure.decimals}
+					measure={measure}
 				/>
 				<p className="mt-3 text-sm text-quiet">{t("map.withheldWhy")}</p>
 			</figcaption>
@@ -125,7 +124,7 @@ function useAreaColumns(measure: ToldMeasure, kind: string): Column<ToldCell>[] 
 		{
 			key: "value",
 			header: t("map.table.value"),
-			cell: (row) => <Figure {...row} status={toldStatus(row)} unit={measure.unit} decimals={measure.decimals} />,
+			cell: (row) => <Figure {...row} status={toldStatus(row)} measure={measure} />,
 		},
 		{
 			key: "band",
@@ -141,7 +140,7 @@ function CropsBlock({ block: { measure, areaName, cells }, season }: Of<"crops">
 	const caption = t("report.cropsOf", { measure: wordsIn(measure.label, i18n.language), area: areaName, season });
 	return (
 		<div className="my-6">
-			<CropTable caption={caption} rows={cells} unit={measure.unit} decimals={measure.decimals} />
+			<CropTable caption={caption} rows={cells} measure={measure} />
 		</div>
 	);
 }

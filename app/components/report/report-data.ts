@@ -1,9 +1,9 @@
 import type { DrawnPicture } from "#app/components/map/static-map.tsx";
 import type { DrawnCell, DrawnClass, Hue } from "#app/components/map/map-data.ts";
-import type { Unit } from "#app/lib/format.ts";
+import type { FigureShape } from "#app/lib/format.ts";
 
 type Words = { en: string; es: string };
-export type ToldMeasure = { label: Words; unit: Unit; decimals: number; hue: Hue };
+export type ToldMeasure = FigureShape & { label: Words; hue: Hue };
 export type ToldCell = Omit<DrawnCell, "look" | "classIndex"> & { kind: string; stateFips: string | null };
 export type ToldCropCell = ToldCell & { cropKey: string };
 export type ToldFigure = { measure: ToldMeasure; cell: ToldCropCell } | null;

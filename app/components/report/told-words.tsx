@@ -15,9 +15,8 @@ export function useFigureWords() {
 		if (cell.steadiness === "rough") return t("report.inText.rough");
 		if (cell.value === null || cell.steadiness === null) return t("report.inText.notAsked");
 		const said = {
-			value: format.quantity(cell.value, measure.unit, measure.decimals),
-			lower: format.number(cell.lower ?? cell.value, measure.decimals),
-			upper: format.quantity(cell.upper ?? cell.value, measure.unit, measure.decimals),
+			value: format.figure(cell.value, measure),
+			...format.ends(cell.lower ?? cell.value, cell.upper ?? cell.value, measure),
 		};
 		return t(cell.steadiness === "care" ? "report.inText.care" : "report.inText.steady", said);
 	};

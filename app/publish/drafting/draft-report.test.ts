@@ -12,6 +12,7 @@ const measure = (key: string): ReleaseMeasure => ({
 	kind: "ratio",
 	unit: "percent",
 	decimals: 0,
+	season: 2025,
 	worse: "more",
 	hue: "loss",
 });
@@ -25,6 +26,7 @@ const cell = (cropKey: string, areaKey: string, value: number | null): CropCell 
 	value,
 	lower: value,
 	upper: value,
+	quartiles: null,
 	steadiness: value === null ? null : "steady",
 	respondentsBand: value === null ? null : "50-99",
 });

@@ -82,13 +82,15 @@ function wherePart(
 					},
 				]
 			: [];
-	const others = measures.filter(({ key, worse }) => key !== measure.key && worse === measure.worse).slice(0, 2);
+	const rest = measures.filter(({ key }) => key !== measure.key);
+	const days = rest.filter(({ kind }) => kind === "day");
+	const others = rest.filter(({ kind, worse }) => kind !== "day" && worse === measure.worse).slice(0, 2);
 	return [
 		{ type: "heading", text: sentence("where") },
 		{ type: "map", measure: measure.key, crop },
 		...widest,
 		{ type: "table", measure: measure.key, crop, kind: "district" },
-		...others.map((other) => ({ type: "figure" as const, measure: other.key, crop, area: "network" })),
+		...[...others, ...days].map((other) => ({ type: "figure" as const, measure: other.key, crop, area: "network" })),
 	];
 }
 

@@ -121,6 +121,14 @@ function Facts({ data: { release, counties, districts } }: { data: Route.Compone
 				term: t("data.one.cutOffs"),
 				detail: t("data.one.cutOffsRule", { steady: percent(rules.steadyCv), care: percent(rules.careCv) }),
 			},
+		rules.steadyDays &&
+			rules.careDays && {
+				term: t("data.one.dayCutOffs"),
+				detail: t("data.one.dayCutOffsRule", {
+					steady: format.quantity(rules.steadyDays, "days"),
+					care: format.quantity(rules.careDays, "days"),
+				}),
+			},
 		{ term: t("data.one.codeVersion"), detail: release.codeVersion },
 	];
 	return <DescriptionList items={items.filter((item) => typeof item === "object")} />;

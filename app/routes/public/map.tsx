@@ -114,8 +114,7 @@ function Map({ map }: { map: MapData }) {
 					label={t("map.alternative", { title })}
 					countiesAddress={map.outlines}
 					figuresAddress={figuresAddress}
-					unit={measure.unit}
-					decimals={measure.decimals}
+					measure={measure}
 					chosen={chosen && byArea[chosen] ? chosen : null}
 					pointed={pointed}
 					nameOf={(areaKey) => (byArea[areaKey] ? areaName(byArea[areaKey]) : t("area.unnamed"))}
@@ -128,8 +127,7 @@ function Map({ map }: { map: MapData }) {
 						classes={map.classes}
 						notAsked={kind === "county" ? withoutCell : 0}
 						hue={measure.hue}
-						unit={measure.unit}
-						decimals={measure.decimals}
+						measure={measure}
 					/>
 					<p className="mt-4 text-sm text-quiet">{t(`map.counted.${kind}`)}</p>
 					<p className="mt-4 text-sm text-quiet">{t("map.withheldWhy")}</p>

@@ -16,7 +16,7 @@ export async function loader() {
 function useSettings({ latest }: Route.ComponentProps["loaderData"]) {
 	const { t } = useTranslation("public");
 	const format = useFormat();
-	const { minimumOwners, dominancePercent, steadyCv, careCv } = latest?.rules ?? {};
+	const { minimumOwners, dominancePercent, steadyCv, careCv, steadyDays, careDays } = latest?.rules ?? {};
 	const percent = (fraction: number) => format.quantity(fraction * 100, "percent");
 	const all = latest?.method.all;
 	return {
@@ -27,6 +27,13 @@ function useSettings({ latest }: Route.ComponentProps["loaderData"]) {
 			? t("methods.private.dominance", { percent: format.quantity(dominancePercent, "percent") })
 			: "",
 		cutOffs: steadyCv && careCv ? t("methods.sure.cutOffs", { steady: percent(steadyCv), care: percent(careCv) }) : "",
+		dayCutOffs:
+			steadyDays && careDays
+				? t("methods.sure.dayCutOffs", {
+						steady: format.quantity(steadyDays, "days"),
+						care: format.quantity(careDays, "days"),
+					})
+				: "",
 		answered: all
 			? t("methods.asked.latest", {
 					answered: format.number(all.answered),
@@ -50,7 +57,8 @@ export default function Methods({ loaderData }: Route.ComponentProps) {
 				<Text lines={[t("methods.weighed.plain"), t("methods.weighed.ratio"), t("methods.weighed.missing")]} />
 			</Section>
 			<Section title={t("methods.sure.title")} id="sure">
-				<Text lines={[t("methods.sure.plain"), t("methods.sure.words"), settings.cutOffs, t("methods.sure.rounded")]} />
+				<Text lines={[t("methods.sure.plain"), t("methods.sure.words"), settings.cutOffs, settings.dayCutOffs]} />
+				<Text lines={[t("methods.sure.days"), t("methods.sure.rounded")]} />
 			</Section>
 			<Section title={t("methods.private.title")} id="privacy">
 				<Text lines={[t("methods.private.pledge"), settings.minimum, settings.dominance]} />

@@ -7,6 +7,7 @@ export function draftReportProps({ draft, ...view }: DraftView): DraftReportProp
 	const { all, setAside, joins } = draft.method;
 	return {
 		...view,
+		measures: view.measures.map((measure) => ({ ...measure, season: draft.season })),
 		audit: draft.audit,
 		rules: draft.rules,
 		asked: all.asked,

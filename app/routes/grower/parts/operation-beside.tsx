@@ -43,7 +43,6 @@ function Pair({ own, measure, cell }: { own: OwnFigure; measure: ReleaseMeasure;
 	const { t } = useTranslation("orchard");
 	const format = useFormat();
 	const nameOf = useAreaName();
-	const { unit, decimals } = measure;
 	return (
 		<dl className="mt-1 grid gap-x-8 gap-y-2 sm:grid-cols-2">
 			<div>
@@ -51,12 +50,12 @@ function Pair({ own, measure, cell }: { own: OwnFigure; measure: ReleaseMeasure;
 				<dd className="font-bold">
 					{own.kind === "proportion"
 						? t(own.value > 0 ? "compare.yes" : "compare.no")
-						: format.quantity(own.value, unit, decimals)}
+						: format.figure(own.value, measure)}
 				</dd>
 			</div>
 			<div>
 				<dt className="text-base text-quiet">{cell ? nameOf(cell) : t("compare.around")}</dt>
-				<dd>{cell ? <Figure {...cell} unit={unit} decimals={decimals} /> : t("compare.noneShown")}</dd>
+				<dd>{cell ? <Figure {...cell} measure={measure} /> : t("compare.noneShown")}</dd>
 			</div>
 		</dl>
 	);

@@ -41,8 +41,7 @@ export function FindingPage({ latest, children }: { latest: Latest; children: Re
 							captionHidden
 							caption={t("home.cropsCaption", shown)}
 							rows={rows}
-							unit={measure.unit}
-							decimals={measure.decimals}
+							measure={measure}
 							linkTo={(cropKey) => mapAddress(release.number, measure.key, cropKey)}
 						/>
 					</Section>
@@ -62,7 +61,7 @@ function useSentence({ release, measure, finding }: Latest): string {
 		season: release.season,
 		crop: t([`crop_said.${cropKey}`, `common:crop.${cropKey}`]),
 		measure: wordsIn(measure.label, i18n.language),
-		value: format.quantity(value, measure.unit, measure.decimals),
+		value: format.figure(value, measure),
 	});
 }
 
@@ -72,7 +71,7 @@ function Headline({ latest: { release, measure, finding } }: { latest: Latest })
 	const label = wordsIn(measure.label, i18n.language);
 	return (
 		<div>
-			<Figure {...finding.cell} unit={measure.unit} decimals={measure.decimals} size="headline" />
+			<Figure {...finding.cell} measure={measure} size="headline" />
 			<p className="mt-2 text-quiet">
 				{t("home.of", { measure: label, crop: t(`common:crop.${finding.cell.cropKey}`), season: release.season })}
 			</p>
@@ -101,7 +100,7 @@ function HomeMap({ latest: { release, measure, figures, picture } }: { latest: L
 				label={t("map.alternative", { title })}
 			/>
 			<figcaption className="mt-3">
-				<Legend {...shared} title={title} notAsked={0} unit={measure.unit} decimals={measure.decimals} />
+				<Legend {...shared} title={title} notAsked={0} measure={measure} />
 				<p className="no-print mt-4">
 					<ButtonLink to={mapAddress(release.number, measure.key, figures.cropKey)} kind="secondary">
 						{t("home.openMap")}

@@ -101,8 +101,8 @@ function useColumns(measure: ReleaseMeasure, kind: string, onChoose: MapTablePro
 					lower={row.lower}
 					upper={row.upper}
 					steadiness={row.steadiness}
-					unit={measure.unit}
-					decimals={measure.decimals}
+					quartiles={row.quartiles}
+					measure={measure}
 				/>
 			),
 		},

@@ -31,7 +31,7 @@ export async function listComparedEstimates(trx: Trx, viewer: Associate, surveyI
 	return {
 		query,
 		crops,
-		measures: measures.map(({ key, label, unit, decimals }) => ({ key, label, unit, decimals })),
+		measures: measures.map(({ key, label, unit, decimals }) => ({ key, label, unit, decimals, season: survey.season })),
 		statesNotHeld: survey.statesNotHeld,
 		draftedAt: draft?.method ? (draft.computedAt ?? draft.draftedAt) : null,
 		timeZone: survey.timeZone,

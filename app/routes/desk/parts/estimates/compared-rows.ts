@@ -2,7 +2,7 @@ import type { Area } from "#app/directory/areas.server.ts";
 import type { AreaEstimate } from "#app/estimate/survey.ts";
 import type { DraftCell, DraftFigure } from "#app/release/draft.ts";
 
-type Told = Pick<DraftFigure, "value" | "standardError" | "lower" | "upper">;
+type Told = Pick<DraftFigure, "value" | "standardError" | "lower" | "upper" | "quartiles">;
 export type ComparedRow = {
 	area: Pick<Area, "key" | "kind" | "name" | "stateFips">;
 	measureKey: string;
@@ -54,8 +54,8 @@ export function compareFigures(
 	);
 }
 
-function toldOf({ value, standardError, lower, upper }: Told): Told {
-	return { value, standardError, lower, upper };
+function toldOf({ value, standardError, lower, upper, quartiles }: Told): Told {
+	return { value, standardError, lower, upper, ...(quartiles && { quartiles }) };
 }
 
 /** What differs by rounding alone has not changed: sums can be added in another order. */

@@ -18,12 +18,12 @@ export function ComparedTable({ query, measures, rows, isDrafted }: ComparedTabl
 	const format = useFormat();
 	const measureOf = new Map(measures.map((measure) => [measure.key, measure]));
 	const figure = (told: ComparedRow["current"], { measureKey }: ComparedRow) => {
-		const { unit, decimals } = measureOf.get(measureKey)!;
+		const measure = measureOf.get(measureKey)!;
 		// A decimal more than is published, as a correction can move less than the last digit shown.
 		return told?.value == null ? (
 			t("estimates.none")
 		) : (
-			<Figure {...told} status="shown" unit={unit} decimals={decimals + 1} />
+			<Figure {...told} status="shown" measure={{ ...measure, decimals: measure.decimals + 1 }} />
 		);
 	};
 	const empty = isDrafted ? "same" : "noDraft";
@@ -55,7 +55,7 @@ export function ComparedTable({ query, measures, rows, isDrafted }: ComparedTabl
 					cell: (row) =>
 						row.difference === null
 							? t("estimates.absent")
-							: format.number(row.difference, measureOf.get(row.measureKey)!.decimals + 1),
+							: format.spread(row.difference, measureOf.get(row.measureKey)!),
 				},
 				{
 					key: "answers",

@@ -1,6 +1,6 @@
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { isSummed, type SummedMeasure } from "#app/collect/form.ts";
+import type { Measure } from "#app/collect/form.ts";
 import { findSurveyForm } from "#app/collect/forms.server.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { type Area, listAreas, regionKey } from "#app/directory/areas.server.ts";
@@ -25,7 +25,7 @@ export async function readDraftInputs(trx: Trx, viewer: Associate, surveyId: str
 	return {
 		survey,
 		held,
-		measures: definition.measures.filter(isSummed).filter((measure) => !measure.base),
+		measures: definition.measures.filter((measure) => !measure.base),
 		areas: held.length > 1 ? [region, ...inTreeOrder(branches)] : inTreeOrder(branches),
 		areasOfCounty: pathsOfCounties(branches),
 		frame: await listFrameStrata(trx, surveyId),
@@ -35,7 +35,7 @@ export async function readDraftInputs(trx: Trx, viewer: Associate, surveyId: str
 export type DraftInputs = NonNullable<Awaited<ReturnType<typeof readDraftInputs>>>;
 
 /** The measures that are told of a crop. */
-export function measuresOf(inputs: Pick<DraftInputs, "measures">, cropKey: string): SummedMeasure[] {
+export function measuresOf(inputs: Pick<DraftInputs, "measures">, cropKey: string): Measure[] {
 	return inputs.measures.filter((measure) =>
 		cropKey === "all" ? measure.acrossCrops : (measure.crops?.includes(cropKey) ?? true),
 	);
@@ -58,7 +58,7 @@ export async function listDraftEstimates(trx: Trx, viewer: Associate, surveyId: 
 		crops,
 		states: held,
 		measureChoices: choices.map(({ key, label }) => ({ key, label })),
-		measures: measures.map(({ key, label, unit, decimals }) => ({ key, label, unit, decimals })),
+		measures: measures.map(({ key, label, unit, decimals }) => ({ key, label, unit, decimals, season: survey.season })),
 		scales: barScales(rows, measures),
 		statesNotHeld: survey.statesNotHeld,
 		isClosed: survey.state === "closed",

@@ -1,11 +1,11 @@
 import { useTranslation } from "react-i18next";
 import { useFormat } from "#app/i18n/use-format.ts";
-import type { Unit } from "#app/lib/format.ts";
+import type { FigureShape } from "#app/lib/format.ts";
 import type { BarScale, Figure } from "./estimate-rows.ts";
 import { IntervalBar } from "./interval-bar.tsx";
 
-export type TableMeasure = { key: string; label: { en: string; es: string }; unit: Unit; decimals: number };
-type FigureProps = { figure: Figure; measure: Pick<TableMeasure, "unit" | "decimals"> };
+export type TableMeasure = FigureShape & { key: string; label: { en: string; es: string } };
+type FigureProps = { figure: Figure; measure: FigureShape };
 
 /** The interval, drawn and in words; where there is none, why. */
 export function FigureInterval({ figure, measure, scale }: FigureProps & { scale: BarScale }) {
@@ -15,15 +15,12 @@ export function FigureInterval({ figure, measure, scale }: FigureProps & { scale
 	if (value === null || lower === null || upper === null) {
 		return <span className="text-xs text-quiet">{t(`estimates.noInterval.${missing ?? "no_spread"}`)}</span>;
 	}
-	const words = {
-		lower: format.number(lower, measure.decimals),
-		upper: format.quantity(upper, measure.unit, measure.decimals),
-	};
+	const words = t("estimates.likely", format.ends(lower, upper, measure));
 	return (
 		<span className="inline-flex flex-col items-end">
-			<IntervalBar {...{ value, lower, upper, scale }} words={t("estimates.likely", words)} />
+			<IntervalBar {...{ value, lower, upper, scale }} words={words} />
 			<span aria-hidden="true" className="whitespace-nowrap text-xs text-quiet">
-				{t("common:figure.interval", words)}
+				{format.range(lower, upper, measure)}
 			</span>
 		</span>
 	);
@@ -44,8 +41,8 @@ export function useSpread() {
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	return {
-		standardError: ({ standardError }: Figure, decimals: number) =>
-			standardError === null ? t("estimates.absent") : format.number(standardError, decimals + 1),
+		standardError: ({ standardError }: Figure, measure: FigureShape) =>
+			standardError === null ? t("estimates.absent") : format.spread(standardError, measure),
 		cv: ({ cv }: Figure) => (cv === null ? t("estimates.absent") : format.quantity(cv * 100, "percent", 1)),
 	};
 }
@@ -60,9 +57,14 @@ export function FigureCell({ figure, measure, scale, to }: FigureProps & { scale
 		<span className="inline-flex min-w-36 flex-col items-end gap-0.5">
 			{to}
 			<FigureInterval figure={figure} measure={measure} scale={scale} />
+			{figure.quartiles && (
+				<span className="text-xs text-quiet">
+					{t("common:figure.half", format.ends(figure.quartiles.first, figure.quartiles.third, measure))}
+				</span>
+			)}
 			<span className="text-xs text-quiet">
 				{figure.standardError !== null &&
-					`${t("estimates.seShort", { value: spread.standardError(figure, measure.decimals) })} · `}
+					`${t("estimates.seShort", { value: spread.standardError(figure, measure) })} · `}
 				{t("estimates.nShort", { count: figure.respondents, value: format.number(figure.respondents) })}
 			</span>
 			<span className="text-xs">

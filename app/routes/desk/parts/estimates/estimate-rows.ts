@@ -64,7 +64,7 @@ function sortValue(row: EstimateRow, sort: string, measure: string): number | nu
 }
 
 /**
- * What each measure's intervals are drawn on: percent from 0 to 100; others from 0 to the largest end of the rows of one
+ * What each measure's intervals are drawn on: percent from 0 to 100; days from the first to the last of the rows; others from 0 to the largest end of the rows of one
  * area level, since a county's total would be a speck beside its state's.
  */
 export function barScales(
@@ -75,12 +75,21 @@ export function barScales(
 	const scalesOf = ({ key, unit }: MeasureOfTable) =>
 		[...levels].map(([kind, ofLevel]): [string, BarScale] => {
 			const figures = ofLevel.flatMap((row) => row.figures.filter((figure) => figure.measureKey === key));
+			if (unit === "day") return [kind, daysScale(figures)];
 			const ends = figures.flatMap(({ value, lower, upper }) => [value ?? 0, lower ?? 0, upper ?? 0]);
 			const percent = unit === "percent";
 			const lowest = percent ? Math.max(-100, Math.min(0, ...ends)) : Math.min(0, ...ends);
 			return [kind, { lowest, highest: percent ? 100 : Math.max(0, ...ends) || 1 }];
 		});
 	return Object.fromEntries(measures.map((measure) => [measure.key, Object.fromEntries(scalesOf(measure))]));
+}
+
+/** A day has no zero to be drawn from. */
+export function daysScale(figures: readonly Pick<Figure, "value" | "lower" | "upper" | "quartiles">[]): BarScale {
+	const days = figures
+		.flatMap(({ value, lower, upper, quartiles }) => [value, lower, upper, quartiles?.first, quartiles?.third])
+		.filter((day) => typeof day === "number");
+	return days.length === 0 ? { lowest: 1, highest: 366 } : { lowest: Math.min(...days), highest: Math.max(...days) };
 }
 
 /** One page of a list that was made whole. */

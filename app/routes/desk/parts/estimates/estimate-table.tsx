@@ -114,7 +114,7 @@ function useMeasureColumns({ surveyId, scales }: Making, measure?: TableMeasure)
 		column("interval", t("estimates.interval"), (figure, row) => (
 			<FigureInterval figure={figure} measure={measure} scale={scales[measure.key]![row.area.kind]!} />
 		)),
-		column("standardError", t("estimates.se"), (figure) => spread.standardError(figure, measure.decimals)),
+		column("standardError", t("estimates.se"), (figure) => spread.standardError(figure, measure)),
 		column("cv", t("estimates.cv"), (figure) => spread.cv(figure)),
 		column("steadiness", t("estimates.steadiness"), (figure) => <FigureSteadiness figure={figure} />),
 	];
@@ -127,7 +127,7 @@ function FigureLink({ surveyId, figure, measure, areaName }: FigureLinkProps) {
 	const { t, i18n } = useTranslation("release");
 	const format = useFormat();
 	const { areaKey, cropKey, measureKey, value } = figure;
-	const shown = value === null ? t("estimates.noBase") : format.quantity(value, measure.unit, measure.decimals);
+	const shown = value === null ? t("estimates.noBase") : format.figure(value, measure);
 	return (
 		<Link
 			to={href("/desk/surveys/:surveyId/estimates/:areaKey/:cropKey/:measureKey", {

@@ -3,6 +3,7 @@ import { DescriptionList } from "#app/components/description-list.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { FigureInterval, FigureSteadiness, useSpread } from "./estimate-figure.tsx";
+import { type BarScale, daysScale, type Figure } from "./estimate-rows.ts";
 import type { ToldFigure } from "./figure-origin.server.ts";
 
 /** The figure itself with all that says how sure it is. */
@@ -12,26 +13,24 @@ export function FigureFacts({ told: { origin, measure } }: { told: ToldFigure })
 	const spread = useSpread();
 	const { estimate } = origin;
 	if (!estimate || estimate.respondents === 0) return <p className="font-bold">{t("origin.nobody")}</p>;
-	const { value, lower, upper } = estimate;
-	const ends = [0, value ?? 0, lower ?? 0, upper ?? 0];
-	const scale = {
-		lowest: Math.min(...ends),
-		highest: measure.unit === "percent" ? Math.max(100, ...ends) : Math.max(...ends) || 1,
-	};
+	const { value, quartiles } = estimate;
+	const scale = scaleOf(estimate, measure.unit);
 	return (
 		<DescriptionList
 			items={[
 				{
 					term: t("origin.value"),
-					detail: (
-						<strong>
-							{value === null ? t("estimates.noBase") : format.quantity(value, measure.unit, measure.decimals)}
-						</strong>
-					),
+					detail: <strong>{value === null ? t("estimates.noBase") : format.figure(value, measure)}</strong>,
 				},
 				{ term: t("estimates.interval"), detail: <FigureInterval figure={estimate} measure={measure} scale={scale} /> },
-				{ term: t("estimates.se"), detail: spread.standardError(estimate, measure.decimals) },
-				{ term: t("estimates.cv"), detail: spread.cv(estimate) },
+				...(quartiles
+					? [
+							{ term: t("origin.firstQuartile"), detail: format.figure(quartiles.first, measure) },
+							{ term: t("origin.thirdQuartile"), detail: format.figure(quartiles.third, measure) },
+						]
+					: []),
+				{ term: t("estimates.se"), detail: spread.standardError(estimate, measure) },
+				...(measure.kind === "day" ? [] : [{ term: t("estimates.cv"), detail: spread.cv(estimate) }]),
 				{ term: t("estimates.answers"), detail: format.number(estimate.respondents) },
 				{ term: t("estimates.steadiness"), detail: <FigureSteadiness figure={estimate} /> },
 			]}
@@ -39,24 +38,34 @@ export function FigureFacts({ told: { origin, measure } }: { told: ToldFigure })
 	);
 }
 
+function scaleOf({ value, lower, upper, quartiles }: Figure, unit: string): BarScale {
+	if (unit === "day") return daysScale([{ value, lower, upper, quartiles }]);
+	const ends = [0, value ?? 0, lower ?? 0, upper ?? 0];
+	const highest = unit === "percent" ? Math.max(100, ...ends) : Math.max(...ends) || 1;
+	return { lowest: Math.min(...ends), highest };
+}
+
+const intervals = { ratio: "normal", mean: "normal", total: "normal", proportion: "logit", day: "inverted" } as const;
+
 /** The formula in words, and the two sums that it is of. */
 export function FigureFormula({ told: { origin, measure } }: { told: ToldFigure }) {
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	const { totals } = origin;
 	const quotient = measure.kind === "ratio" || measure.kind === "proportion";
+	const isDay = measure.kind === "day";
 	return (
 		<Section title={t("origin.formula.title")}>
 			<ol className="mb-5 ml-5 max-w-prose list-decimal space-y-2">
 				<li>{t("origin.formula.weight")}</li>
 				<li>{t(`origin.formula.${measure.kind}`)}</li>
-				<li>{t("origin.formula.variance")}</li>
-				<li>{t(measure.kind === "proportion" ? "origin.formula.logit" : "origin.formula.normal")}</li>
+				<li>{t(isDay ? "origin.formula.shareVariance" : "origin.formula.variance")}</li>
+				<li>{t(`origin.formula.${intervals[measure.kind]}`)}</li>
 			</ol>
 			<DescriptionList
 				items={[
 					{ term: t("origin.weightedCount"), detail: format.number(totals.count, 1) },
-					{ term: t("origin.weightedY"), detail: format.number(totals.y, 1) },
+					{ term: t(isDay ? "origin.weightedBefore" : "origin.weightedY"), detail: format.number(totals.y, 1) },
 					...(quotient ? [{ term: t("origin.weightedX"), detail: format.number(totals.x, 1) }] : []),
 				]}
 			/>

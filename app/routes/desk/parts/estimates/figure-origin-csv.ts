@@ -27,6 +27,8 @@ export function figureOriginCsv(told: ToldFigure): string {
 				cv: estimate?.cv ?? null,
 				lower: estimate?.lower ?? null,
 				upper: estimate?.upper ?? null,
+				first_quartile: estimate?.quartiles?.first ?? null,
+				third_quartile: estimate?.quartiles?.third ?? null,
 				respondents: estimate?.respondents ?? 0,
 				steadiness: estimate?.steadiness ?? null,
 				missing: estimate ? estimate.missing : "no_respondents",

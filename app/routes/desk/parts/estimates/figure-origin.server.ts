@@ -25,7 +25,7 @@ export async function findFigureOrigin(trx: Trx, viewer: Associate, place: Figur
 		survey: { title: inputs.survey.title, season: inputs.survey.season, statesNotHeld: inputs.survey.statesNotHeld },
 		area: { key: area.key, kind: area.kind, name: area.name, stateFips: area.stateFips },
 		cropKey,
-		measure: { key, label, description, kind, unit, decimals },
+		measure: { key, label, description, kind, unit, decimals, season: inputs.survey.season },
 		origin: originOf(inputs, { areaKey, cropKey, measure }),
 		dispositions,
 		response: frameResponse(dispositions),

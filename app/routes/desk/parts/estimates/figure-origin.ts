@@ -1,6 +1,7 @@
-import type { SummedMeasure } from "#app/collect/form.ts";
+import type { Measure } from "#app/collect/form.ts";
 import { type DomainStratum, domainStrata, domainTotals } from "#app/estimate/domain.ts";
 import { type Linearized, linearize } from "#app/estimate/linearize.ts";
+import { histogramStrata, sharesAtOrBelow } from "#app/estimate/quantile.ts";
 import { itemResponseRate } from "#app/estimate/response-rate.ts";
 import { type Join, joinStrata, respondentsByStratum } from "#app/estimate/strata.ts";
 import { type AreaEstimate, type AreasOfCounty, estimateSurvey } from "#app/estimate/survey.ts";
@@ -35,7 +36,7 @@ export type FigureOrigin = {
 	strata: OriginStratum[];
 	/** Strata of the design in which the area has no answer: they count as zeros. */
 	otherStrata: number;
-	/** Weighted sums over the area, in the canonical units of the measure's questions. */
+	/** Weighted sums over the area, in the canonical units of the measure's questions; of days, y is those at or before the median. */
 	totals: { count: number; y: number; x: number };
 	items: { used: number; setAside: number; unanswered: number; rate: number | null };
 };
@@ -43,7 +44,7 @@ export type FigureOrigin = {
 /** How the figure of one measure and crop in one area comes about, number by number, from the tallies that it is made of. */
 export function originOf(
 	{ frame, tallies: all, areasOfCounty }: OriginInputs,
-	{ areaKey, cropKey, measure }: { areaKey: string; cropKey: string; measure: SummedMeasure },
+	{ areaKey, cropKey, measure }: { areaKey: string; cropKey: string; measure: Measure },
 ): FigureOrigin {
 	const tallies = all.filter((tally) => tally.measureKey === measure.key && tally.cropKey === cropKey);
 	const { estimates } = estimateSurvey({ measures: [measure], frame, tallies, areasOfCounty });
@@ -51,9 +52,16 @@ export function originOf(
 	const inArea = tallies.filter((tally) => areasOfCounty.get(tally.countyFips)?.includes(areaKey));
 	const ofCrop = frame.filter((stratum) => stratum.cropKey === cropKey);
 	const joined = joinStrata(ofCrop, respondentsByStratum(tallies));
-	const domain = domainStrata(joined, inArea);
+	const isDay = measure.kind === "day";
+	// A median rests on how many lie at or before it: y counts those, x all.
+	const domain = isDay
+		? sharesAtOrBelow(histogramStrata(joined, inArea), found?.value ?? 0)
+		: domainStrata(joined, inArea);
 	const design = joined.strata.filter((stratum) => stratum.respondents > 0);
-	const shares = varianceShares(domain, found?.standardError ? linearize(measure.kind, domain) : null);
+	const shares = varianceShares(
+		domain,
+		found?.standardError ? linearize(measure.kind === "day" ? "ratio" : measure.kind, domain) : null,
+	);
 	const placeOf = new Map(ofCrop.map(({ stratumKey, stateFips, sizeClass }) => [stratumKey, { stateFips, sizeClass }]));
 	const partsOf = (keys: readonly string[]) => keys.map((key) => placeOf.get(key)!);
 	const strata = domain.flatMap(({ domain: { n, sumY, sumX }, weight }, at) => {

@@ -11,6 +11,7 @@ export function FigureStrata({ told: { origin, measure } }: { told: ToldFigure }
 	const format = useFormat();
 	const named = useStratumName();
 	const quotient = measure.kind === "ratio" || measure.kind === "proportion";
+	const isDay = measure.kind === "day";
 	return (
 		<Section title={t("origin.strata.title")}>
 			<DataTable
@@ -23,7 +24,9 @@ export function FigureStrata({ told: { origin, measure } }: { told: ToldFigure }
 					number("respondents", t("origin.strata.respondents"), (one) => format.number(one.respondents)),
 					number("weight", t("origin.strata.weight"), (one) => format.number(one.weight, 3)),
 					number("inArea", t("origin.strata.inArea"), (one) => format.number(one.inArea)),
-					number("sumY", t("origin.strata.sumY"), (one) => format.number(one.sumY, 1)),
+					number("sumY", t(isDay ? "origin.strata.before" : "origin.strata.sumY"), (one) =>
+						format.number(one.sumY, isDay ? 0 : 1),
+					),
 					...(quotient ? [number("sumX", t("origin.strata.sumX"), (one) => format.number(one.sumX, 1))] : []),
 					number("share", t("origin.strata.share"), ({ varianceShare }) =>
 						varianceShare === null ? t("estimates.absent") : format.quantity(varianceShare * 100, "percent", 1),

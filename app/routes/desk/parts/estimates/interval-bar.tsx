@@ -21,7 +21,9 @@ export function IntervalBar({ value, lower, upper, scale, words }: IntervalBarPr
 			className="inline-block align-middle"
 		>
 			<line x1={2} x2={width - 2} y1={height / 2} y2={height / 2} className="stroke-rule" strokeWidth={1} />
-			<line x1={at(0)} x2={at(0)} y1={2} y2={height - 2} className="stroke-field" strokeWidth={1} />
+			{scale.lowest <= 0 && (
+				<line x1={at(0)} x2={at(0)} y1={2} y2={height - 2} className="stroke-field" strokeWidth={1} />
+			)}
 			<line
 				x1={at(lower)}
 				x2={Math.max(at(upper), at(lower) + 1)}
