@@ -1,12 +1,11 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { FormDefinition } from "#app/collect/form.ts";
-import { afterHarvest } from "#app/collect/forms/after-harvest.ts";
+import { readyForms } from "#app/collect/forms/ready-forms.ts";
 import { factRows } from "#app/tally/facts.server.ts";
 import type { Asked, Reply, SeedResponse } from "./replies.ts";
 import type { Season } from "./seasons.ts";
 
-const definition = FormDefinition.parse(afterHarvest);
 type Response = SeedResponse & { operation_id: string };
 
 /** Responses with what each holds now and what was sent in, a few statements for all of them. */
@@ -62,7 +61,13 @@ async function insertSubmissions(trx: Trx, asked: Asked[], responses: Response[]
 }
 
 /** The facts of each response's newest submission, with place, owner and stratum of the frozen frame. */
-export async function insertFacts(trx: Trx, { surveyId }: Season, asked: Asked[], replies: Reply[]): Promise<void> {
+export async function insertFacts(
+	trx: Trx,
+	{ surveyId, form }: Season,
+	asked: Asked[],
+	replies: Reply[],
+): Promise<void> {
+	const definition = FormDefinition.parse(readyForms[form]);
 	const plantingsOf = plantingsByOperation(asked);
 	const rows = replies.flatMap(({ operation_id, response }) => {
 		const sent = response?.submissions.at(-1);

@@ -47,7 +47,8 @@ export async function fillRelease(trx: Trx, team: Team, season: Released): Promi
 	const about = { subjectKind: "release", subjectId: releaseId, detail: { number } };
 	await logEvent(trx, { personId: team.coordinator.personId, action: "release.published", ...about });
 	await moveLog(trx, releaseId, season.release.publishedAt, "release.published");
-	await writeReport(trx, team, season, releaseId);
+	if (!season.release.report) return `release ${number}`;
+	await writeReport(trx, team, season.season, season.release.report, releaseId);
 	return `release ${number} with its report`;
 }
 
@@ -67,23 +68,28 @@ async function draftRelease(trx: Trx, associate: Associate, { season, surveyId, 
 	return releaseDraftId;
 }
 
-async function writeReport(trx: Trx, { associate, coordinator }: Team, season: Released, releaseId: string) {
-	const { reportStartedAt, reportSubmittedAt, reportPublishedAt } = season.release;
+async function writeReport(
+	trx: Trx,
+	{ associate, coordinator }: Team,
+	season: number,
+	{ startedAt, submittedAt, publishedAt }: NonNullable<Released["release"]["report"]>,
+	releaseId: string,
+): Promise<void> {
 	const reportId = await startReport(trx, associate, releaseId, await draftWords());
-	if (!reportId) throw new Error(`release ${season.season} has nothing to report`);
-	await addWords(trx, associate, reportId, season.season);
+	if (!reportId) throw new Error(`release ${season} has nothing to report`);
+	await addWords(trx, associate, reportId, season);
 	const submitted = await submitReport(trx, associate, reportId);
 	// A published report is frozen, so these times are set before it is.
 	await trx
 		.updateTable("publish.report")
-		.set({ created_at: reportStartedAt, submitted_at: reportSubmittedAt })
+		.set({ created_at: startedAt, submitted_at: submittedAt })
 		.where("report_id", "=", reportId)
 		.execute();
-	const published = await publishReport(trx, coordinator, reportId, reportPublishedAt);
-	if (published !== "published") throw new Error(`report ${season.season}: ${submitted}, ${published}`);
-	await moveLog(trx, reportId, reportStartedAt, "report.started");
-	await moveLog(trx, reportId, reportSubmittedAt, "report.submitted");
-	await moveLog(trx, reportId, reportPublishedAt, "report.published");
+	const published = await publishReport(trx, coordinator, reportId, publishedAt);
+	if (published !== "published") throw new Error(`report ${season}: ${submitted}, ${published}`);
+	await moveLog(trx, reportId, startedAt, "report.started");
+	await moveLog(trx, reportId, submittedAt, "report.submitted");
+	await moveLog(trx, reportId, publishedAt, "report.published");
 }
 
 /** The associate's own paragraph, after the first of the draft's. */

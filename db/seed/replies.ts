@@ -2,6 +2,7 @@ import type { SizeClass } from "#app/collect/frame.ts";
 import type { Answer } from "#app/collect/form.ts";
 import { wallClockOf } from "#app/collect/survey-closing.ts";
 import { inventAnswers } from "./answers.ts";
+import { inventBloom } from "./bloom.ts";
 import type { SeedOperation } from "./operations.ts";
 import type { Place } from "./places.ts";
 import { pickWeighted, type Random, seededRandom } from "./random.ts";
@@ -35,7 +36,8 @@ const bySize: Record<SizeClass, number> = { small: -0.05, medium: 0.02, large: 0
 
 /** How one operation's survey ends, or stands `now`. The same operation and season always give the same. */
 export function inventReply(season: Season, asked: Asked, now: Date): Reply {
-	const random = seededRandom(`reply ${season.season} ${asked.operation_id}`);
+	const what = season.form === "bloom_watch" ? "bloom reply" : "reply";
+	const random = seededRandom(`${what} ${season.season} ${asked.operation_id}`);
 	// A grower who answers one year is likely to answer the next.
 	const willing = seededRandom(`willing ${asked.operation_id}`).normal() * 0.15;
 	const shaken = freezeAt(season, asked.place) > 0.3 ? 0.06 : 0;
@@ -110,7 +112,8 @@ function partialResponse(random: Random, season: Season, asked: Asked, at: Date)
 }
 
 function answersBy(random: Random, season: Season, asked: Asked, at: Date): Answer[] {
-	return inventAnswers(random, season, asked, asked.place, wallClockOf(at, "America/Chicago").on);
+	const invent = season.form === "bloom_watch" ? inventBloom : inventAnswers;
+	return invent(random, season, asked, asked.place, wallClockOf(at, "America/Chicago").on);
 }
 
 function responseOf(random: Random, asked: Asked, started: Date) {

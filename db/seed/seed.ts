@@ -1,4 +1,4 @@
-// Fills the demo's database: an invented network, three seasons of answers, two releases with their reports. Each step is
+// Fills the demo's database: an invented network, three seasons of answers, their releases and reports. Each step is
 // one transaction and is known to be done by what it leaves behind: a seed that was interrupted goes on at the next start,
 // and a second run changes nothing.
 import type { Kysely } from "kysely";
@@ -8,10 +8,11 @@ import type { DB } from "#db/schema.ts";
 import { fillNetwork } from "./network.ts";
 import { findAssociate, findCoordinator } from "./people.ts";
 import { fillRelease, hasRelease, isOver, type Team } from "./releases.ts";
-import { listSeasons } from "./seasons.ts";
+import { listSeasons, type Season } from "./seasons.ts";
 import { report } from "./steps.ts";
 import { fillSeason, hasSurvey } from "./survey.ts";
 
+const nameOf = ({ form, season }: Season) => `${form === "bloom_watch" ? "Bloom" : "Season"} ${season}`;
 const there = "already there";
 
 async function seed(owner: Kysely<DB>, issuer: string): Promise<void> {
@@ -26,14 +27,14 @@ async function seed(owner: Kysely<DB>, issuer: string): Promise<void> {
 	};
 	const seasons = listSeasons(now);
 	for (const season of seasons) {
-		await report(`Season ${season.season}`, () =>
+		await report(nameOf(season), () =>
 			inOne(owner, async (trx) =>
 				(await hasSurvey(trx, season)) ? there : fillSeason(trx, team.associate, season, now),
 			),
 		);
 	}
 	for (const season of seasons.filter(isOver)) {
-		await report(`Figures of ${season.season}`, () =>
+		await report(`Figures of ${nameOf(season).toLowerCase()}`, () =>
 			inOne(owner, async (trx) => ((await hasRelease(trx, season)) ? there : fillRelease(trx, team, season))),
 		);
 	}

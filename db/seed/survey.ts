@@ -2,7 +2,7 @@ import { sql } from "kysely";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { afterHarvest } from "#app/collect/forms/after-harvest.ts";
+import { readyForms } from "#app/collect/forms/ready-forms.ts";
 import { ensureForm } from "#app/collect/forms.server.ts";
 import type { SizeClass } from "#app/collect/frame.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
@@ -41,7 +41,8 @@ export async function hasSurvey(trx: Trx, { surveyId }: Season): Promise<boolean
 /** Opens the survey as the desk does, which freezes its frame, and then moves its times to where they belong. */
 async function makeSurvey(trx: Trx, associate: Associate, season: Season, now: Date): Promise<void> {
 	const { surveyId, openedAt, closesAt, closedAt } = season;
-	const { formVersionId } = await ensureForm(trx, afterHarvest);
+	const form = readyForms[season.form];
+	const { formVersionId } = await ensureForm(trx, form);
 	const stillToCome = new Date(now.getTime() + 86_400_000);
 	await trx
 		.insertInto("collect.survey")
@@ -49,7 +50,7 @@ async function makeSurvey(trx: Trx, associate: Associate, season: Season, now: D
 			survey_id: surveyId,
 			form_version_id: formVersionId,
 			season: season.season,
-			title: JSON.stringify({ en: "After harvest", es: "Después de la cosecha" }),
+			title: JSON.stringify(form.title),
 			crop_keys: [...cropKeys],
 			closes_at: stillToCome,
 			created_by: associate.personId,

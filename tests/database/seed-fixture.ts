@@ -3,8 +3,11 @@ import { afterAll, beforeAll } from "vitest";
 import { createTestDatabase, type TestDatabase } from "#tests/helpers/database.ts";
 import { connectOwner, useDatabase } from "./surveys-fixture.ts";
 
-/** The id of the demo's survey of a season. */
+/** The id of the demo's survey after a season's harvest. */
 export const surveyOf = (season: number) => `5ea50000-${season}-4000-8000-000000000001`;
+
+/** That of its bloom. */
+export const bloomOf = (season: number) => surveyOf(season).replace(/1$/, "2");
 
 /** A clone of the demo's database for the tests of one file, with the owner's eyes on it. Filling the first takes a while. */
 export function useDemo() {

@@ -3,7 +3,7 @@ import { findPublishedReport, listPublishedReports } from "#app/publish/reports.
 import { resolveReport } from "#app/publish/resolved-report.server.ts";
 import { findReleaseById, listReleases } from "#app/publish/releases.server.ts";
 import { runScript } from "#tests/helpers/database.ts";
-import { surveyOf, useDemo } from "./seed-fixture.ts";
+import { bloomOf, surveyOf, useDemo } from "./seed-fixture.ts";
 
 const { rowsOf, numberOf, databaseName } = useDemo();
 
@@ -12,8 +12,11 @@ test("the demo has its growers, plantings and three seasons, and owners who hold
 	const plantings = await numberOf("select count(*) from directory.planting");
 	expect(plantings).toBeGreaterThan(2_400);
 	expect(plantings).toBeLessThan(2_600);
-	const seasons = await rowsOf<{ season: number }>("select season from collect.survey order by season");
-	expect(seasons.map(({ season }) => season)).toEqual([2024, 2025, 2026]);
+	const surveys = await rowsOf<{ survey_id: string }>(
+		"select survey_id from collect.survey order by season, opened_at",
+	);
+	const wanted = [surveyOf(2024), bloomOf(2025), surveyOf(2025), surveyOf(2026)];
+	expect(surveys.map(({ survey_id }) => survey_id)).toEqual(wanted);
 	const several = `select count(*) from (select from directory.operation group by owner_id having count(*) between 2 and 4) o`;
 	expect(await numberOf(several)).toBeGreaterThanOrEqual(24);
 	expect(await numberOf(several.replace("between 2 and 4", "> 4"))).toBe(0);
@@ -51,20 +54,21 @@ test("the freeze of 2025 cost Iowa's apples most, in the facts and in the publis
 
 test("2024 and 2025 are released by two people after a passed audit, and 2026 is open without a release", async () => {
 	const releases = await listReleases();
-	expect(releases.map(({ season }) => season).toSorted((a, b) => a - b)).toEqual([2024, 2025]);
+	expect(releases.toReversed().map(({ season, formKey }) => [season, formKey])).toEqual([
+		[2024, "after_harvest"],
+		[2025, "bloom_watch"],
+		[2025, "after_harvest"],
+	]);
 	const drafts = await rowsOf<{ season: number; status: string; passed: boolean; alone: boolean; late: boolean }>(
 		`select season, status, (d.audit ->> 'passed')::boolean as passed, drafted_by = decided_by as alone,
-			s.closed_at < d.drafted_at and d.drafted_at < p.published_at and extract(year from p.published_at) = season + 1
-				and extract(month from p.published_at) = 1 as late
+			s.closed_at < d.drafted_at and d.drafted_at < p.published_at
+				and to_char(p.published_at, 'YYYY-MM') = case p.form_key when 'bloom_watch' then season || '-07' else season + 1 || '-01' end as late
 		from collect.release_draft d join collect.survey s using (survey_id) join release.release p using (release_id, season)
 		order by season`,
 	);
 	const fine = { status: "approved", passed: true, alone: false, late: true };
-	expect(drafts).toEqual([
-		{ season: 2024, ...fine },
-		{ season: 2025, ...fine },
-	]);
-	expect(await numberOf("select count(*) from collect.release_draft")).toBe(2);
+	expect(drafts).toEqual([2024, 2025, 2025].map((season) => ({ season, ...fine })));
+	expect(await numberOf("select count(*) from collect.release_draft")).toBe(3);
 	expect(
 		await numberOf(
 			`select count(*) from collect.survey where survey_id = $1 and opened_at < now() and closed_at is null
@@ -79,16 +83,16 @@ test("a good part of the counties with apple growers is shown, so that the map i
 		`select season, count(*) filter (where status = 'shown')::int as shown,
 			(count(*) filter (where status = 'shown'))::float8 / count(*) as share
 		from release.cell join release.area a using (release_id, area_key) join release.release using (release_id)
-		where a.kind = 'county' and crop_key = 'apple' and status <> 'no_growers' group by season`,
+		where a.kind = 'county' and crop_key = 'apple' and status <> 'no_growers' group by season, form_key`,
 	);
-	expect(counties).toHaveLength(2);
+	expect(counties).toHaveLength(3);
 	for (const { shown, share } of counties) {
 		expect(shown).toBeGreaterThanOrEqual(30);
 		expect(share).toBeGreaterThan(1 / 3);
 	}
 });
 
-test("each release has a report that any reader can open, with every figure found", async () => {
+test("each harvest's release has a report that any reader can open, with every figure found", async () => {
 	const reports = await listPublishedReports();
 	expect(reports.map(({ slug }) => slug)).toEqual(["crop-report-2025", "crop-report-2024"]);
 	for (const { slug, releaseId, publishedAt } of reports) {
@@ -101,6 +105,17 @@ test("each release has a report that any reader can open, with every figure foun
 		const figure = resolved.summary.en.find(({ kind }) => kind === "figure");
 		expect(figure).toMatchObject({ figure: { cell: { status: "shown", value: expect.any(Number) } } });
 	}
+});
+
+test("apples bloomed earlier to the south, in enough counties for a map", async () => {
+	const bloomed = await rowsOf<{ area_key: string; value: number }>(
+		`select area_key, value from release.figure join release.release using (release_id)
+		where measure_key = 'first_bloom' and crop_key = 'apple' and steadiness <> 'rough'`,
+	);
+	const dayOf = (area: string) => bloomed.find(({ area_key }) => area_key === area)!.value;
+	expect(dayOf("19")).toBeLessThan(dayOf("55") - 3);
+	expect(dayOf("17")).toBeLessThan(dayOf("27") - 6);
+	expect(bloomed.filter(({ area_key }) => /^\d{5}$/.test(area_key)).length).toBeGreaterThanOrEqual(30);
 });
 
 test("a second run changes nothing, and one that was cut short before the last season goes on", async () => {
