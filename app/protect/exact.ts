@@ -98,6 +98,7 @@ class Search {
 			this.#bound = Math.max(this.#bound, outcome.objective);
 			if (this.#closeable(outcome)) return;
 			const cuts = this.#separator.cuts(outcome.values, false);
+			if (process.env.LOUD) console.log("round", round, outcome.objective, "loss", this.#loss, "cuts", cuts.length, "of", this.#rows.length, "closed", this.#closed.size, "LP", this.#separator.linearPrograms, "cpu", process.cpuUsage().user / 1e6);
 			if (cuts.length === 0) return;
 			this.#add(cuts);
 		}

@@ -1,8 +1,10 @@
-import { AttackProgram, type Cut, type Openness, type Question, type Witness } from "./attack-program.ts";
+import { AttackProgram, type Cut, type Witness } from "./attack-program.ts";
 import type { Attacker } from "./attackers.ts";
+import { Knowledge } from "./knowledge.ts";
 import type { OwnCell } from "./levels.ts";
 import type { Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
+import { WitnessProgram } from "./witness-program.ts";
 
 /** Where shields are to be chosen, and against whom. */
 export interface ShieldProblem {
@@ -15,17 +17,33 @@ export interface ShieldProblem {
 	scope: readonly number[];
 	/** cells of the scope that are withheld whatever is chosen */
 	certain: ReadonlySet<number>;
+	/** Whether cells outside the scope stand still, or might move at will: then a bound holds for any wider scope. */
+	outside: "still" | "free";
 }
 
-interface Target extends Question {
+interface Target {
 	own: OwnCell;
 	quantity: number;
-	/** by attacker: possible tables that were found, newest first */
-	seen: Map<Attacker, Witness[]>;
+	place: number;
+	direction: 1 | -1;
+	/** what everybody must be kept from */
+	level: number;
+	/** possible tables that were found, newest first */
+	seen: Seen[];
 }
 
-const KEPT_WITNESSES = 4;
+interface Seen {
+	witness: Witness;
+	level: number;
+	/** whose bounds and relations it fits */
+	attacker: Attacker;
+}
+
+const KEPT_WITNESSES = 24;
 const SHOWN = 0.02;
+/** A pattern that violates so many is not worth more questions: the next one will differ. */
+const MOST_CUTS = 40;
+const MOST_CUTS_OF_A_TARGET = 3;
 
 /** No choice of shields protects this cell. */
 export class Unprotectable extends Error {
@@ -40,26 +58,24 @@ export class Unprotectable extends Error {
  */
 export class Separator {
 	readonly certain: Uint8Array;
-	readonly #programs: AttackProgram[];
+	readonly #programs: { cut: AttackProgram; witness: WitnessProgram }[];
 	readonly #targets: Target[];
 	readonly #place: ReadonlyMap<number, number>;
 	/** place -> attackers who know that cell */
 	readonly #knowers = new Map<number, Attacker[]>();
-	/** attackers who know more than cells: no possible table of another's tells of theirs */
+	/** attackers who know more than cells and what everybody knows: no possible table of another's tells of theirs */
 	readonly #apart: Attacker[];
+	/** where the next questions begin, so that every target has its turn */
+	#next = 0;
 
 	constructor(
 		solver: Solver,
 		readonly problem: ShieldProblem,
 	) {
-		const { table, own, attackers, scope } = problem;
+		const { table, attackers, scope } = problem;
 		this.#place = new Map(scope.map((index, place) => [index, place]));
 		this.certain = Uint8Array.from(scope, (index) => (problem.certain.has(index) ? 1 : 0));
-		this.#programs = table.quantities.map(
-			(quantity) => new AttackProgram(solver, table, quantity, scope, this.certain, attackers),
-		);
-		const everybody = attackers[0]!;
-		this.#apart = attackers.slice(1).filter(({ bounds, relations }) => bounds?.length || relations?.length);
+		this.#apart = attackers.slice(1).filter((attacker) => !this.#sameBounds(attacker, attackers[0]!));
 		for (const attacker of attackers.slice(1)) {
 			if (this.#apart.includes(attacker)) continue;
 			for (const index of attacker.knows) {
@@ -68,20 +84,18 @@ export class Separator {
 				this.#knowers.set(place, [...(this.#knowers.get(place) ?? []), attacker]);
 			}
 		}
-		this.#targets = own.flatMap((cell) =>
-			table.quantities.flatMap(({ key }, quantity) =>
-				([1, -1] as const).flatMap((direction) => {
-					const level = everybody.asks(cell, key, direction);
-					const place = this.#place.get(cell.index);
-					if (!(level > 0) || place === undefined) return [];
-					return [{ own: cell, quantity, place, direction, level, attacker: everybody, seen: new Map() }];
-				}),
-			),
-		);
+		this.#programs = table.quantities.map((quantity) => {
+			const knowledge = new Knowledge(table, quantity, scope, this.certain, attackers, problem.outside);
+			return {
+				cut: new AttackProgram(solver, knowledge),
+				witness: new WitnessProgram(solver, knowledge, new Set(this.#knowers.keys())),
+			};
+		});
+		this.#targets = this.#listTargets();
 	}
 
 	get linearPrograms(): number {
-		return this.#programs.reduce((sum, { runs }) => sum + runs, 0);
+		return this.#programs.reduce((sum, { cut, witness }) => sum + cut.runs + witness.runs, 0);
 	}
 
 	/**
@@ -91,44 +105,76 @@ export class Separator {
 	 */
 	cuts(withheld: Float64Array, whole: boolean): Cut[] {
 		const cuts = new Map<string, Cut>();
-		for (const target of this.#targets) {
-			const first = this.#try(target, withheld, whole);
-			if ("cut" in first) {
-				cuts.set(keyOf(first.cut), first.cut);
-				continue;
-			}
-			const others = new Set([...first.witness.moved.flatMap((p) => this.#knowers.get(p) ?? []), ...this.#apart]);
-			for (const attacker of others) {
-				const { key } = this.problem.table.quantities[target.quantity]!;
-				const level = attacker.asks(target.own, key, target.direction);
-				if (!(level > 0)) continue;
-				const found = this.#try({ ...target, attacker, level }, withheld, whole);
-				if ("cut" in found) cuts.set(keyOf(found.cut), found.cut);
-			}
+		for (let asked = 0; asked < this.#targets.length && cuts.size < MOST_CUTS; asked++) {
+			const target = this.#targets[this.#next++ % this.#targets.length]!;
+			for (const cut of this.#cutsFor(target, withheld, whole)) cuts.set(keyOf(cut), cut);
 		}
 		return [...cuts.values()];
 	}
 
-	#try(target: Target, withheld: Float64Array, whole: boolean): { witness: Witness } | { cut: Cut } {
-		const seen = target.seen.get(target.attacker) ?? [];
-		const known = seen.find((witness) => this.#fits(witness, withheld, whole));
-		if (known) return { witness: known };
-		const program = this.#programs[target.quantity]!;
-		for (const shown of [SHOWN, 0]) {
-			const open: Openness = { of: withheld, whole, shown };
-			const answer = program.ask(target, open);
-			if ("cut" in answer) {
-				if (answer.cut === null) throw new Unprotectable(target.own.index);
-				if (isViolated(answer.cut, withheld)) return { cut: answer.cut };
-				// The relaxed search allowed less than the truth does: nothing is wrong that a cut could tell.
-				if (shown === 0 && !whole) return { witness: { moved: [], by: [] } };
-				if (shown === 0) throw new Error("a pattern fails by less than can be told");
-			} else if (shown === 0) {
-				target.seen.set(target.attacker, [answer.witness, ...seen].slice(0, KEPT_WITNESSES));
-				return answer;
-			}
+	#cutsFor(target: Target, withheld: Float64Array, whole: boolean): Cut[] {
+		const everybody = this.problem.attackers[0]!;
+		const { key } = this.problem.table.quantities[target.quantity]!;
+		const first = this.#try(target, everybody, target.level, withheld, whole);
+		if ("cut" in first) return [first.cut];
+		const cuts: Cut[] = [];
+		const others = new Set([...first.witness.moved.flatMap((p) => this.#knowers.get(p) ?? []), ...this.#apart]);
+		for (const attacker of others) {
+			const level = attacker.asks(target.own, key, target.direction);
+			if (!(level > 0)) continue;
+			const found = this.#try(target, attacker, level, withheld, whole);
+			if ("cut" in found) cuts.push(found.cut);
+			if (cuts.length === MOST_CUTS_OF_A_TARGET) break;
 		}
-		throw new Error("unreachable");
+		return cuts;
+	}
+
+	#try(
+		target: Target,
+		attacker: Attacker,
+		level: number,
+		withheld: Float64Array,
+		whole: boolean,
+	): { witness: Witness } | { cut: Cut } {
+		const seen = this.#seen(target, attacker, level, withheld, whole);
+		if (seen) return { witness: seen };
+		const { place, direction, quantity } = target;
+		const question = { place, direction, level, attacker };
+		const { cut: cutter, witness: finder } = this.#programs[quantity]!;
+		const open = { of: withheld, whole, shown: 0 };
+		const witness = finder.find(question, open);
+		if (witness) return this.#keep(target, { witness, level, attacker });
+		const answer = cutter.ask(question, open);
+		if ("witness" in answer) return this.#keep(target, { witness: answer.witness, level, attacker });
+		if (answer.cut === null) throw new Unprotectable(target.own.index);
+		// The same with shown cells that move a little gives a cut on fewer cells, where it gives one at all.
+		const second = cutter.ask(question, { ...open, shown: SHOWN });
+		for (const { cut } of [second as { cut?: Cut | null }, answer]) {
+			if (cut && isViolated(cut, withheld)) return { cut };
+		}
+		// The relaxed search allowed less than the truth does: nothing is wrong that a cut could tell.
+		if (!whole) return { witness: { moved: [], by: [] } };
+		throw new Error("a pattern fails by less than can be told");
+	}
+
+	#seen(target: Target, attacker: Attacker, level: number, withheld: Float64Array, whole: boolean) {
+		const known = this.#programs[target.quantity]!.cut.knowledge.placesOf(attacker);
+		return target.seen.find(
+			(seen) =>
+				seen.level >= level &&
+				this.#sameBounds(seen.attacker, attacker) &&
+				this.#fits(seen.witness, withheld, whole) &&
+				!seen.witness.moved.some((p) => known.has(p)),
+		)?.witness;
+	}
+
+	#keep(target: Target, seen: Seen): { witness: Witness } {
+		target.seen = [seen, ...target.seen].slice(0, KEPT_WITNESSES);
+		return seen;
+	}
+
+	#sameBounds(a: Attacker, b: Attacker): boolean {
+		return a === b || (a.bounds === b.bounds && a.relations === b.relations);
 	}
 
 	#fits({ moved, by }: Witness, withheld: Float64Array, whole: boolean): boolean {
@@ -138,8 +184,25 @@ export class Separator {
 		});
 	}
 
+	#listTargets(): Target[] {
+		const { table, own, attackers } = this.problem;
+		return own.flatMap((cell) =>
+			table.quantities.flatMap(({ key }, quantity) =>
+				([1, -1] as const).flatMap((direction) => {
+					const level = attackers[0]!.asks(cell, key, direction);
+					const place = this.#place.get(cell.index);
+					if (!(level > 0) || place === undefined) return [];
+					return [{ own: cell, quantity, place, direction, level, seen: [] }];
+				}),
+			),
+		);
+	}
+
 	dispose() {
-		for (const program of this.#programs) program.dispose();
+		for (const { cut, witness } of this.#programs) {
+			cut.dispose();
+			witness.dispose();
+		}
 	}
 }
 
