@@ -1,5 +1,6 @@
-import { LinearProgram, type Column, type Row, type Solver } from "./solver.ts";
-import { childrenOf, overlaps, type ProtectionTable, type Quantity } from "./table.ts";
+import { relationsAmong } from "./relations.ts";
+import { LinearProgram, type Column, type Solver } from "./solver.ts";
+import { childrenOf, type ProtectionTable } from "./table.ts";
 
 /** Above this many cells with growers, a way to move a cell is sought near it first. */
 const SMALL_TABLE = 1500;
@@ -122,38 +123,16 @@ export class Augmenter {
 				{ cost, lower: 0, upper: free ? value(index) / scale : 0 },
 			];
 		});
-		const rows = rowsOf(this.table, quantity, place, scale);
+		const rows = relationsAmong(this.table, quantity, place).map(({ cells: among, factors, lower, upper }) => ({
+			lower: lower / scale,
+			upper: upper / scale,
+			columns: among.flatMap((index) => [2 * place.get(index)!, 2 * place.get(index)! + 1]),
+			factors: factors.flatMap((factor) => [factor, -factor]),
+		}));
 		const scope = { program: new LinearProgram(this.solver, columns, rows, "bounds"), cells, place, scale };
 		this.#scopes.set(name, scope);
 		return scope;
 	}
-}
-
-/** What keeps the moves of the placed cells together; cells outside stand still. */
-function rowsOf(table: ProtectionTable, quantity: Quantity, place: Map<number, number>, scale: number): Row[] {
-	const value = (index: number) => table.cells[index]!.quantities[quantity.key]!.total / scale;
-	const rows: Row[] = [];
-	for (const equation of table.equations) {
-		const inside = [...equation.parts, equation.total].filter((index) => place.has(index));
-		if (inside.length === 0) continue;
-		const row = (indices: number[], lower: number, upper: number): Row => ({
-			lower,
-			upper,
-			columns: indices.flatMap((index) => [2 * place.get(index)!, 2 * place.get(index)! + 1]),
-			factors: indices.flatMap((index) => (index === equation.total ? [-1, 1] : [1, -1])),
-		});
-		if (!overlaps(quantity, equation)) {
-			rows.push(row(inside, 0, 0));
-			continue;
-		}
-		const slack = equation.parts.reduce((sum, index) => sum + value(index), 0) - value(equation.total);
-		rows.push(row(inside, Math.min(0, -slack), Infinity));
-		for (const part of equation.parts) {
-			const pair = [part, equation.total].filter((index) => place.has(index));
-			if (pair.length > 0) rows.push(row(pair, -Infinity, Math.max(0, value(equation.total) - value(part))));
-		}
-	}
-	return rows;
 }
 
 /** Parts of the table to search one after the other: around a cell in its largest tree, then wider, then all of it. */

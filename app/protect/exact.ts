@@ -1,5 +1,5 @@
 import type { Cut } from "./attack-program.ts";
-import { Separator, type ShieldProblem, Unprotectable } from "./separator.ts";
+import { OutOfWork, Separator, type ShieldProblem, Unprotectable } from "./separator.ts";
 import { LinearProgram, type Row, type Solver } from "./solver.ts";
 import { solveZeroOne } from "./zero-one.ts";
 
@@ -10,9 +10,15 @@ export interface ExactLimits {
 	masters: number;
 	/** Nodes of branch and bound in each of them. */
 	nodes: number;
+	/** Linear programs of attackers in all: about a millisecond each. */
+	linearPrograms: number;
 }
 
-export const defaultLimits: ExactLimits = { rounds: 200, masters: 200, nodes: 20_000 };
+/** Counts and not seconds, so that the same table always gets the same shields. */
+export const defaultLimits: ExactLimits = { rounds: 200, masters: 100, nodes: 20_000, linearPrograms: 60_000 };
+
+/** Tells how far a search is: the best loss so far (Infinity: none) and the bound. */
+export type Watch = (best: number, bound: number) => void;
 
 export interface ExactResult {
 	/** null: no choice in the scope protects every cell */
@@ -40,13 +46,15 @@ export function solveExactly(
 	loss: readonly number[],
 	start: readonly number[] | null,
 	limits: ExactLimits = defaultLimits,
+	watch: Watch = () => {},
 ): ExactResult {
-	const search = new Search(solver, problem, loss, start);
+	const search = new Search(solver, new Separator(solver, problem, limits.linearPrograms), loss, start);
 	try {
-		search.relax(limits.rounds);
-		search.branch(limits);
+		search.relax(limits.rounds, watch);
+		search.branch(limits, watch);
 		return search.result();
 	} catch (error) {
+		if (error instanceof OutOfWork) return search.result();
 		if (!(error instanceof Unprotectable)) throw error;
 		return { ...search.result(), shields: null, loss: Infinity, bound: Infinity };
 	} finally {
@@ -55,7 +63,6 @@ export function solveExactly(
 }
 
 class Search {
-	readonly #separator: Separator;
 	readonly #costs: number[];
 	readonly #rows: Row[] = [];
 	readonly #relaxed: LinearProgram;
@@ -67,17 +74,16 @@ class Search {
 
 	constructor(
 		readonly solver: Solver,
-		readonly problem: ShieldProblem,
+		readonly separator: Separator,
 		loss: readonly number[],
 		start: readonly number[] | null,
 	) {
-		this.#separator = new Separator(solver, problem);
-		const { scope } = problem;
-		this.#costs = scope.map((index, p) => (this.#separator.certain[p] ? 0 : loss[index]!));
-		const columns = this.#costs.map((cost, p) => ({ cost, lower: 0, upper: this.#separator.certain[p] ? 0 : 1 }));
+		const { scope } = separator.problem;
+		this.#costs = scope.map((index, p) => (this.separator.certain[p] ? 0 : loss[index]!));
+		const columns = this.#costs.map((cost, p) => ({ cost, lower: 0, upper: this.separator.certain[p] ? 0 : 1 }));
 		this.#relaxed = new LinearProgram(solver, columns, [], "bounds");
 		scope.forEach((_, p) => {
-			if (this.#separator.certain[p]) this.#closed.add(p);
+			if (this.separator.certain[p]) this.#closed.add(p);
 		});
 		if (start) {
 			const chosen = new Set(start);
@@ -86,7 +92,7 @@ class Search {
 	}
 
 	/** Tightens the relaxed program until no cut is violated. */
-	relax(rounds: number) {
+	relax(rounds: number, watch: Watch) {
 		for (let round = 0; round < rounds; round++) {
 			const outcome = this.#relaxed.solve();
 			if (outcome.status === "infeasible" && this.#best) {
@@ -96,16 +102,16 @@ class Search {
 			}
 			if (outcome.status !== "optimal") throw new Error(`the relaxed program ended ${outcome.status}`);
 			this.#bound = Math.max(this.#bound, outcome.objective);
+			watch(this.#loss, this.#bound);
 			if (this.#closeable(outcome)) return;
-			const cuts = this.#separator.cuts(outcome.values, false);
-			if (process.env.LOUD) console.log("round", round, outcome.objective, "loss", this.#loss, "cuts", cuts.length, "of", this.#rows.length, "closed", this.#closed.size, "LP", this.#separator.linearPrograms, "cpu", process.cpuUsage().user / 1e6);
+			const cuts = this.separator.cuts(outcome.values, false);
 			if (cuts.length === 0) return;
 			this.#add(cuts);
 		}
 	}
 
 	/** Solves 0/1 programs until the least choice protects every cell. */
-	branch({ masters, nodes }: ExactLimits) {
+	branch({ masters, nodes }: ExactLimits, watch: Watch) {
 		while (this.#masters < masters && !this.#isProven()) {
 			const program = { costs: this.#costs, closed: this.#closed, rows: this.#rows };
 			const outcome = solveZeroOne(this.solver, program, this.#best, nodes);
@@ -116,26 +122,28 @@ class Search {
 			if (outcome.status === "infeasible" || !outcome.chosen) return;
 			const withheld = new Float64Array(this.#costs.length);
 			for (const p of outcome.chosen) withheld[p] = 1;
-			const cuts = this.#separator.cuts(withheld, true);
-			if (cuts.length === 0) this.#keep(outcome.chosen);
-			else this.#add(cuts);
-			if (cuts.length === 0 && outcome.status === "limited") return;
+			const cuts = this.separator.cuts(withheld, true);
+			const faults = cuts.length === 0 ? this.#addFaults(outcome.chosen) : 0;
+			if (cuts.length > 0) this.#add(cuts);
+			else if (faults === 0) this.#keep(outcome.chosen);
+			watch(this.#loss, this.#bound);
+			if (faults === 0 && cuts.length === 0 && outcome.status === "limited") return;
 		}
 	}
 
 	result(): ExactResult {
 		return {
-			shields: this.#best?.map((p) => this.problem.scope[p]!) ?? null,
+			shields: this.#best?.map((p) => this.separator.problem.scope[p]!) ?? null,
 			loss: this.#loss,
 			bound: this.#isProven() ? this.#loss : this.#bound,
-			linearPrograms: this.#separator.linearPrograms,
+			linearPrograms: this.separator.linearPrograms,
 			cuts: this.#rows.length,
 			masters: this.#masters,
 		};
 	}
 
 	dispose() {
-		this.#separator.dispose();
+		this.separator.dispose();
 		this.#relaxed.dispose();
 	}
 
@@ -150,6 +158,24 @@ class Search {
 		const rows = cuts.map(({ places, shares }) => ({ lower: 1, upper: Infinity, columns: places, factors: shares }));
 		this.#rows.push(...rows);
 		this.#relaxed.addRows(rows);
+	}
+
+	/** Rules that no attacker states join the program as the patterns that break them come up. */
+	#addFaults(chosen: readonly number[]): number {
+		const { scope, certain, faults } = this.separator.problem;
+		const place = new Map(scope.map((index, p) => [index, p]));
+		const found = faults?.(new Set([...certain, ...chosen.map((p) => scope[p]!)])) ?? [];
+		for (const { withhold, show } of found) {
+			const open = (cells: readonly number[]) =>
+				cells.flatMap((index) => (certain.has(index) ? [] : (place.get(index) ?? [])));
+			const [on, off] = [open(withhold), open(show)];
+			if (on.length + off.length === 0) throw new Unprotectable(show[0] ?? withhold[0]!);
+			const factors = [...on.map(() => 1), ...off.map(() => -1)];
+			const row = { lower: 1 - off.length, upper: Infinity, columns: [...on, ...off], factors };
+			this.#rows.push(row);
+			this.#relaxed.addRows([row]);
+		}
+		return found.length;
 	}
 
 	#isProven() {

@@ -19,6 +19,14 @@ export interface ShieldProblem {
 	certain: ReadonlySet<number>;
 	/** Whether cells outside the scope stand still, or might move at will: then a bound holds for any wider scope. */
 	outside: "still" | "free";
+	/** Rules for whole patterns that no attacker states. */
+	faults?: (withheld: ReadonlySet<number>) => readonly PatternFault[];
+}
+
+/** A pattern must withhold one of these cells or show one of those; as it is it does neither. */
+export interface PatternFault {
+	withhold: readonly number[];
+	show: readonly number[];
 }
 
 interface Target {
@@ -52,6 +60,9 @@ export class Unprotectable extends Error {
 	}
 }
 
+/** The limit of linear programs was met before the answer. */
+export class OutOfWork extends Error {}
+
 /**
  * Asks for every cell to be protected, quantity, direction and attacker whether a pattern protects it, and tells cuts
  * that the pattern violates. Possible tables once found are kept: while a pattern allows one, nothing is solved.
@@ -71,6 +82,7 @@ export class Separator {
 	constructor(
 		solver: Solver,
 		readonly problem: ShieldProblem,
+		readonly mostPrograms: number,
 	) {
 		const { table, attackers, scope } = problem;
 		this.#place = new Map(scope.map((index, place) => [index, place]));
@@ -101,12 +113,13 @@ export class Separator {
 	/**
 	 * Cuts that the pattern violates; none when it protects every cell.
 	 * @param withheld by place, 0 to 1; for `whole` only 0 and 1.
-	 * @throws {Unprotectable}
+	 * @throws {Unprotectable | OutOfWork}
 	 */
 	cuts(withheld: Float64Array, whole: boolean): Cut[] {
 		const cuts = new Map<string, Cut>();
 		for (let asked = 0; asked < this.#targets.length && cuts.size < MOST_CUTS; asked++) {
 			const target = this.#targets[this.#next++ % this.#targets.length]!;
+			if (this.linearPrograms > this.mostPrograms) throw new OutOfWork();
 			for (const cut of this.#cutsFor(target, withheld, whole)) cuts.set(keyOf(cut), cut);
 		}
 		return [...cuts.values()];

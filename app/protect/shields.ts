@@ -1,6 +1,7 @@
 import { liesInside, soleHoldings } from "./attackers.ts";
 import { Augmenter } from "./augment.ts";
 import type { OwnCell } from "./levels.ts";
+import { lossByCell, type Objective } from "./loss.ts";
 import type { Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
 
@@ -9,6 +10,8 @@ export interface ShieldOptions {
 	ownersAttack: boolean;
 	/** Whether the total of everything may be withheld when nothing else helps. */
 	grandTotal: "last_resort" | "never";
+	/** `value` where it is not given */
+	objective?: Objective;
 }
 
 /** The cells on which the protection of one own cell, in one quantity and direction, rests. */
@@ -21,6 +24,8 @@ interface Footing {
 
 /** Above the level by this share, so that rounding in the audit's programs does not count as a failure. */
 const MARGIN = 1 + 1e-5;
+/** Tiny cells are not quite free to move, as shares of the mean cell. */
+const LEAST_WEIGHT = 1e-3;
 
 /**
  * Chooses shields: cells that are withheld so that no own cell can be worked out. Safe, near the least loss, not
@@ -29,16 +34,19 @@ const MARGIN = 1 + 1e-5;
  * withheld. What is withheld later can only widen an interval, so one pass protects all. A second pass shows each
  * shield again, dearest first, where every cell resting on it finds another footing among the withheld.
  * The order is fixed by weight and position, so the same table gives the same shields.
- * @returns positions of the shields; null when even withholding every cell that may be withheld does not help.
+ * @param given cells that are withheld already and stay so
+ * @returns positions of the shields, without own and given cells; null when even withholding every cell that may be withheld does not help.
  */
 export function chooseShields(
 	solver: Solver,
 	table: ProtectionTable,
 	own: readonly OwnCell[],
 	options: ShieldOptions,
+	given: ReadonlySet<number> = new Set(),
 ): Set<number> | null {
-	const weights = cellWeights(table);
-	const hidden = new Set(own.map(({ index }) => index));
+	const weights = lossByCell(table, options.objective ?? "value").map((loss) => Math.max(LEAST_WEIGHT, loss));
+	const kept = new Set([...own.map(({ index }) => index), ...given]);
+	const hidden = new Set(kept);
 	const grand = table.cells.findIndex((c) => c.coordinates.every((code, d) => code === table.hierarchies[d]!.root));
 	const augmenter = new Augmenter(solver, table, weights, hidden, new Set(hidden.has(grand) ? [] : [grand]));
 	const find = footingFinder(table, augmenter, options);
@@ -56,9 +64,8 @@ export function chooseShields(
 			if (!footing) return null;
 			footings.push({ ...wish, cells: footing });
 		}
-		const ownSet = new Set(own.map(({ index }) => index));
-		showNeedless(augmenter, footings, ownSet, weights, find);
-		return new Set([...hidden].filter((index) => !ownSet.has(index)).toSorted((a, b) => a - b));
+		showNeedless(augmenter, footings, kept, weights, find);
+		return new Set([...hidden].filter((index) => !kept.has(index)).toSorted((a, b) => a - b));
 	} finally {
 		augmenter.dispose();
 	}
@@ -74,7 +81,7 @@ type Find = (
 function showNeedless(
 	augmenter: Augmenter,
 	footings: Footing[],
-	own: ReadonlySet<number>,
+	kept: ReadonlySet<number>,
 	weights: readonly number[],
 	find: Find,
 ) {
@@ -85,7 +92,7 @@ function showNeedless(
 		else resting.set(index, new Set([footing]));
 	};
 	for (const footing of footings) for (const index of footing.cells) rest(footing, index);
-	const shields = [...augmenter.hidden].filter((index) => !own.has(index));
+	const shields = [...augmenter.hidden].filter((index) => !kept.has(index));
 	for (const shield of shields.toSorted((a, b) => weights[b]! - weights[a]! || a - b)) {
 		const moves = new Map<Footing, Set<number>>();
 		let needed = false;
@@ -140,15 +147,4 @@ function wishesOf(table: ProtectionTable, own: readonly OwnCell[], weights: read
 			return directions.map((direction) => ({ own: cell, quantity: key, direction }));
 		}),
 	);
-}
-
-/** Lost information: a cell's mean share over the quantities, 1 being the mean cell's; tiny cells are not quite free. */
-export function cellWeights(table: ProtectionTable): number[] {
-	const living = table.cells.filter((cell) => cell.owners > 0).length;
-	const sums = table.quantities.map(({ key }) => table.cells.reduce((sum, c) => sum + c.quantities[key]!.total, 0));
-	const used = sums.filter((sum) => sum > 0).length;
-	return table.cells.map((cell) => {
-		const shares = table.quantities.map(({ key }, q) => (sums[q]! > 0 ? cell.quantities[key]!.total / sums[q]! : 0));
-		return Math.max(1e-3, (shares.reduce((a, b) => a + b, 0) / Math.max(1, used)) * living);
-	});
 }
