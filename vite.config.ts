@@ -12,6 +12,7 @@ export default defineConfig({
 				extends: true,
 				test: {
 					name: "unit",
+					maxWorkers: "100%",
 					include: [
 						"app/**/*.test.{ts,tsx}",
 						"db/**/*.test.ts",
@@ -25,6 +26,7 @@ export default defineConfig({
 				extends: true,
 				test: {
 					name: "database",
+					maxWorkers: "100%",
 					include: ["tests/database/**/*.test.ts", "tests/walls/**/*.test.ts"],
 					expect: { poll: { timeout: 20_000 } },
 					testTimeout: 60_000,
@@ -40,7 +42,9 @@ export default defineConfig({
 					expect: { poll: { timeout: 20_000 } },
 					testTimeout: 300_000,
 					hookTimeout: 300_000,
-					fileParallelism: false,
+					// Each file has a whole product of its own: two at once fill two cores, more would wait for each other.
+					maxWorkers: 2,
+					sequence: { groupOrder: 1 },
 				},
 			},
 		],

@@ -196,8 +196,11 @@ export interface CollectReleaseDraft {
   drafted_at: Generated<Timestamp>;
   drafted_by: string;
   method: Json | null;
+  publish_at: Timestamp | null;
   release_draft_id: Generated<string>;
   release_id: string | null;
+  revises: string | null;
+  revision_reason: Json | null;
   rules: Json;
   status: Generated<string>;
   survey_id: string;
@@ -516,14 +519,24 @@ export interface ReleaseRelease {
   audit: Json;
   checksum: string;
   code_version: string;
+  edition: Generated<number>;
   form_key: string;
   method: Json;
   number: Generated<number>;
   published_at: Generated<Timestamp>;
   release_id: string;
+  revises: string | null;
+  revision_reason: Json | null;
   rules: Json;
   season: number;
+  series_id: string;
   title: Json;
+}
+
+export interface ReleaseWithdrawal {
+  reason: Json;
+  release_id: string;
+  withdrawn_at: Generated<Timestamp>;
 }
 
 export interface DB {
@@ -572,4 +585,5 @@ export interface DB {
   "release.figure": ReleaseFigure;
   "release.measure": ReleaseMeasure;
   "release.release": ReleaseRelease;
+  "release.withdrawal": ReleaseWithdrawal;
 }

@@ -12,7 +12,7 @@ export const logActions = {
 		...(["publication_allowed", "publication_disallowed"] as const),
 	],
 	response: ["started", "submitted", "amended", "withdrawn"],
-	release: ["drafted", "rejected", "published"],
+	release: ["drafted", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
 	report: ["started", "submitted", "sent_back", "published"],
 } as const;
 

@@ -63,12 +63,15 @@ async function listFigures(trx: Trx, surveyId: string, operationId: string, meas
 		);
 }
 
+/** The newest edition of the survey's figures. */
 async function findReleaseId(trx: Trx, surveyId: string): Promise<string | null> {
 	const draft = await trx
 		.selectFrom("collect.release_draft")
 		.select("release_id")
 		.where("survey_id", "=", surveyId)
 		.where("status", "=", "approved")
+		.orderBy("drafted_at", "desc")
+		.limit(1)
 		.executeTakeFirst();
 	return draft?.release_id ?? null;
 }

@@ -82,7 +82,7 @@ async function hasDraftedRelease(trx: Trx, surveyId: string): Promise<boolean> {
 		.selectFrom("collect.release_draft")
 		.select("release_draft_id")
 		.where("survey_id", "=", surveyId)
-		.where("status", "in", ["queued", "audited", "approved"])
+		.where("status", "in", ["queued", "audited", "scheduled", "approved"])
 		.limit(1)
 		.execute();
 	return drafts.length > 0;

@@ -80,7 +80,7 @@ async function endDrafts(trx: Trx, surveyId: string): Promise<"ended" | "release
 		.updateTable("collect.release_draft")
 		.set({ status: "superseded" })
 		.where("survey_id", "=", surveyId)
-		.where("status", "in", ["queued", "failed", "audit_failed", "audited"])
+		.where("status", "in", ["queued", "failed", "audit_failed", "audited", "scheduled"])
 		.execute();
 	return "ended";
 }

@@ -10,6 +10,7 @@ export type JobPayloads = {
 	send_sample: { surveyId: string; personId: string; kind: LetterKind; language: Language };
 	thank_growers: { releaseDraftId: string };
 	compute_release_draft: { releaseDraftId: string };
+	publish_release: { releaseDraftId: string };
 	/** The files of photos that were taken away. */
 	erase_photos: { fileNames: string[] };
 	sweep_photos: Record<string, unknown>;

@@ -4,6 +4,7 @@ import { languages } from "#app/i18n/language.ts";
 import { letterKinds } from "#app/mail/templates.ts";
 import { computeReleaseDraft } from "./compute-release-draft.server.ts";
 import { erasePhotoFiles, sweepPhotos } from "./photos.server.ts";
+import { publishAtItsMinute } from "./publish-release.server.ts";
 import type { JobPayloads } from "./queue.server.ts";
 import { sendSample } from "./sample-mail.server.ts";
 import { sendMail } from "./send-mail.server.ts";
@@ -27,6 +28,7 @@ export const tasks: Record<keyof JobPayloads, Task> = {
 	),
 	thank_growers: task(z.object({ releaseDraftId: z.uuid() }), thankGrowers),
 	compute_release_draft: task(z.object({ releaseDraftId: z.uuid() }), (payload) => computeReleaseDraft(payload)),
+	publish_release: task(z.object({ releaseDraftId: z.uuid() }), publishAtItsMinute),
 	erase_photos: task(z.object({ fileNames: z.array(z.string().regex(/^[0-9a-f]{32}$/)) }), erasePhotoFiles),
 	sweep_photos: task(z.looseObject({}), sweepPhotos),
 };

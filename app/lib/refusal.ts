@@ -14,6 +14,7 @@ const statusOf = {
 	orchard_not_found: 404,
 	response_not_found: 404,
 	release_not_found: 404,
+	release_withdrawn: 410,
 	report_not_found: 404,
 	request_not_found: 404,
 	too_much_text: 413,

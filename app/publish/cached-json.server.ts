@@ -21,7 +21,7 @@ export function cachedJson(request: Request, body: string, keep: keyof typeof ca
 }
 
 /** A refusal of a resource route, after RFC 9457. Holds the status and its meaning only. */
-export function problem(status: 400 | 404, title: string): Response {
+export function problem(status: 400 | 404 | 410, title: string): Response {
 	return new Response(JSON.stringify({ type: "about:blank", title, status }), {
 		status,
 		headers: { "content-type": "application/problem+json", "cache-control": caching.none },

@@ -36,6 +36,16 @@ export type Release = {
 	method: z.infer<typeof Method>;
 	codeVersion: string;
 	checksum: string;
+	/** 1 for a survey's first, then rising: each edition replaces the one before it. */
+	edition: number;
+	/** All editions of one survey have it in common. */
+	seriesId: string;
+	/** Why this edition replaced the one before it; null for the first. */
+	revisionReason: Words | null;
+	/** Number of the release that replaced this one. */
+	replacedBy: number | null;
+	/** When and why its figures were withdrawn: they are served to nobody any more. */
+	withdrawn: { at: string; reason: Words } | null;
 };
 
 export type ReleaseMeasure = FigureShape & {

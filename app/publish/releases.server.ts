@@ -4,25 +4,38 @@ import { type Release, type ReleaseArea, type ReleaseMeasure, toHue, toMethod, t
 
 type Reader = Kysely<ReaderDB>;
 
-/** All releases, the latest first. */
+/** Releases that stand, the latest first: neither replaced by a revision nor withdrawn. */
 export async function listReleases(db: Reader = reader()): Promise<Release[]> {
-	const rows = await selectReleases(db).orderBy("number", "desc").execute();
+	const rows = await selectStanding(db).orderBy("r.number", "desc").execute();
 	return rows.map(toRelease);
 }
 
+/** All releases with what became of each, the latest first. */
+export async function listEveryRelease(db: Reader = reader()): Promise<Release[]> {
+	const rows = await selectReleases(db).orderBy("r.number", "desc").execute();
+	return rows.map(toRelease);
+}
+
+/** Every edition of one survey's figures, the latest first. */
+export async function listEditions(seriesId: string, db: Reader = reader()): Promise<Release[]> {
+	const rows = await selectReleases(db).where("r.series_id", "=", seriesId).orderBy("r.edition", "desc").execute();
+	return rows.map(toRelease);
+}
+
+/** Whatever became of it: who has its address is told. */
 export async function findRelease(number: number, db: Reader = reader()): Promise<Release | undefined> {
-	const row = await selectReleases(db).where("number", "=", number).executeTakeFirst();
+	const row = await selectReleases(db).where("r.number", "=", number).executeTakeFirst();
 	return row && toRelease(row);
 }
 
 export async function findReleaseById(releaseId: string, db: Reader = reader()): Promise<Release | undefined> {
-	const row = await selectReleases(db).where("release_id", "=", releaseId).executeTakeFirst();
+	const row = await selectReleases(db).where("r.release_id", "=", releaseId).executeTakeFirst();
 	return row && toRelease(row);
 }
 
-/** The release with the highest number: what the home page speaks of. */
+/** The standing release with the highest number: what the home page speaks of. */
 export async function findLatestRelease(db: Reader = reader()): Promise<Release | undefined> {
-	const row = await selectReleases(db).orderBy("number", "desc").limit(1).executeTakeFirst();
+	const row = await selectStanding(db).orderBy("r.number", "desc").limit(1).executeTakeFirst();
 	return row && toRelease(row);
 }
 
@@ -102,20 +115,16 @@ export async function listCoveredStates(releaseId: string, db: Reader = reader()
 
 function selectReleases(db: Reader) {
 	return db
-		.selectFrom("release.release")
-		.select([
-			"release_id",
-			"number",
-			"season",
-			"form_key",
-			"title",
-			"published_at",
-			"rules",
-			"method",
-			"code_version",
-			"checksum",
-		]);
+		.selectFrom("release.release as r")
+		.leftJoin("release.release as next", "next.revises", "r.release_id")
+		.leftJoin("release.withdrawal as w", "w.release_id", "r.release_id")
+		.select(["r.release_id", "r.number", "r.season", "r.form_key", "r.title", "r.published_at"])
+		.select(["r.rules", "r.method", "r.code_version", "r.checksum", "r.series_id", "r.edition", "r.revision_reason"])
+		.select(["next.number as replaced_by", "w.withdrawn_at", "w.reason as withdrawal_reason"]);
 }
+
+const selectStanding = (db: Reader) =>
+	selectReleases(db).where("next.release_id", "is", null).where("w.release_id", "is", null);
 
 type ReleaseRow = Awaited<ReturnType<ReturnType<typeof selectReleases>["executeTakeFirstOrThrow"]>>;
 
@@ -131,6 +140,14 @@ function toRelease(row: ReleaseRow): Release {
 		method: toMethod(row.method),
 		codeVersion: row.code_version,
 		checksum: row.checksum,
+		edition: row.edition,
+		seriesId: row.series_id,
+		revisionReason: row.revision_reason === null ? null : toWords(row.revision_reason),
+		replacedBy: row.replaced_by,
+		withdrawn: row.withdrawn_at && {
+			at: row.withdrawn_at.toISOString(),
+			reason: toWords(row.withdrawal_reason),
+		},
 	};
 }
 

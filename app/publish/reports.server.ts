@@ -16,9 +16,16 @@ export type ListedReport = {
 };
 export type PublishedReport = ListedReport & { content: ReportContent };
 
-/** Published reports, the latest first. Drafts are hidden by the role's row-level security, not by this query alone. */
+/**
+ * Published reports, the latest first, but for those whose figures were withdrawn. Drafts are hidden by the role's row-level
+ * security, not by this query alone.
+ */
 export async function listPublishedReports(db: Reader = reader()): Promise<ListedReport[]> {
-	const rows = await selectReports(db).orderBy("published_at", "desc").orderBy("slug").execute();
+	const rows = await selectReports(db)
+		.where("release_id", "not in", (eb) => eb.selectFrom("release.withdrawal as w").select("w.release_id"))
+		.orderBy("published_at", "desc")
+		.orderBy("slug")
+		.execute();
 	return rows.map(toReport).map(({ content: _content, ...listed }) => listed);
 }
 

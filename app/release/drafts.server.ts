@@ -4,7 +4,20 @@ import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { Words } from "#app/lib/words.ts";
 import { type DraftCell, DraftFigure, ReleaseAudit, ReleaseMethod, ReleaseRules } from "./draft.ts";
 
-export type DraftStatus = "queued" | "failed" | "audit_failed" | "audited" | "approved" | "rejected" | "superseded";
+export type DraftStatus =
+	| "queued"
+	| "failed"
+	| "audit_failed"
+	| "audited"
+	/** Approved, and waiting for its minute. */
+	| "scheduled"
+	/** Published. */
+	| "approved"
+	| "rejected"
+	| "superseded";
+
+/** Drafts of which a newer one, or an answer that is taken back, takes the place. */
+export const waitingStatuses = ["queued", "failed", "audit_failed", "audited", "scheduled"] as const;
 
 export type Draft = {
 	releaseDraftId: string;
@@ -12,6 +25,8 @@ export type Draft = {
 	status: DraftStatus;
 	season: number;
 	title: Words;
+	/** Of the survey: closing and publication are told and set on its clock. */
+	timeZone: string;
 	draftedBy: { personId: string; displayName: string };
 	draftedAt: Date;
 	computedAt: Date | null;
@@ -22,17 +37,27 @@ export type Draft = {
 	audit: ReleaseAudit | null;
 	checksum: string | null;
 	releaseId: string | null;
+	publishAt: Date | null;
+	/** The release that this one is to replace, and why; both null for a survey's first. */
+	revises: string | null;
+	revisionReason: Words | null;
 };
 
-/** Starts a draft of a closed survey's release; an earlier one that waits is superseded. The figures are a job's work. */
+/** What a draft has come to that cannot be made. */
+type NoDraft = "not_found" | "not_closed" | "already_released" | "not_released";
+
+/**
+ * Starts a draft of a closed survey's release; an earlier one that waits is superseded. The figures are a job's work.
+ * @param revisionReason why published figures are told anew: with it the draft is one of a revision, without it of a first
+ *   release.
+ */
 export async function createDraft(
 	trx: Trx,
 	viewer: Associate,
 	surveyId: string,
 	rules: ReleaseRules,
-): Promise<
-	{ outcome: "drafted"; releaseDraftId: string } | { outcome: "not_found" | "not_closed" | "already_released" }
-> {
+	revisionReason: Words | null = null,
+): Promise<{ outcome: "drafted"; releaseDraftId: string } | { outcome: NoDraft }> {
 	const survey = await trx
 		.selectFrom("collect.survey as s")
 		.select(["survey_id", "closed_at", "closes_at", "opened_at"])
@@ -43,24 +68,39 @@ export async function createDraft(
 	if (!survey) return { outcome: "not_found" };
 	// A survey that is still open could be drafted twice, and the difference would be one late answer.
 	if (!survey.closed_at && survey.closes_at > new Date()) return { outcome: "not_closed" };
-	const earlier = await trx
-		.selectFrom("collect.release_draft")
-		.select(["release_draft_id", "status"])
-		.where("survey_id", "=", surveyId)
-		.execute();
-	if (earlier.some((draft) => draft.status === "approved")) return { outcome: "already_released" };
+	const revises = await findNewestEdition(trx, surveyId);
+	if (revises && !revisionReason) return { outcome: "already_released" };
+	if (!revises && revisionReason) return { outcome: "not_released" };
 	await trx
 		.updateTable("collect.release_draft")
 		.set({ status: "superseded" })
 		.where("survey_id", "=", surveyId)
-		.where("status", "in", ["queued", "failed", "audit_failed", "audited"])
+		.where("status", "in", waitingStatuses)
 		.execute();
 	const { release_draft_id: releaseDraftId } = await trx
 		.insertInto("collect.release_draft")
-		.values({ survey_id: surveyId, rules: JSON.stringify(rules), drafted_by: viewer.personId })
+		.values({
+			survey_id: surveyId,
+			rules: JSON.stringify(rules),
+			drafted_by: viewer.personId,
+			revises,
+			revision_reason: revisionReason && JSON.stringify(revisionReason),
+		})
 		.returning("release_draft_id")
 		.executeTakeFirstOrThrow();
 	return { outcome: "drafted", releaseDraftId };
+}
+
+/** The release of a survey that none has replaced, or null before the first. */
+export async function findNewestEdition(trx: Trx, surveyId: string): Promise<string | null> {
+	const row = await trx
+		.selectFrom("release.release")
+		.select("release_id")
+		.where("series_id", "=", surveyId)
+		.orderBy("edition", "desc")
+		.limit(1)
+		.executeTakeFirst();
+	return row?.release_id ?? null;
 }
 
 /** The newest draft of a survey, or undefined before the first. */
@@ -78,7 +118,7 @@ export async function findLatestDraft(trx: Trx, viewer: Associate, surveyId: str
 export async function listDrafts(trx: Trx, _viewer: Coordinator): Promise<Draft[]> {
 	const rows = await selectDrafts(trx)
 		.where("d.status", "!=", "superseded")
-		.orderBy(sql`d.status = 'audited'`, "desc")
+		.orderBy(sql`d.status in ('audited', 'scheduled')`, "desc")
 		.orderBy("d.drafted_at", "desc")
 		.limit(200)
 		.execute();
@@ -88,6 +128,16 @@ export async function listDrafts(trx: Trx, _viewer: Coordinator): Promise<Draft[
 export async function findDraft(trx: Trx, _viewer: Coordinator, releaseDraftId: string): Promise<Draft | undefined> {
 	const row = await selectDrafts(trx).where("d.release_draft_id", "=", releaseDraftId).executeTakeFirst();
 	return row && toDraft(row);
+}
+
+/** Why a release was withdrawn, or null while it stands. */
+export async function findWithdrawal(trx: Trx, releaseId: string): Promise<Words | null> {
+	const row = await trx
+		.selectFrom("release.withdrawal")
+		.select("reason")
+		.where("release_id", "=", releaseId)
+		.executeTakeFirst();
+	return row ? Words.parse(row.reason) : null;
 }
 
 /** Cells of a draft with their statuses and reasons, figures of shown cells only. */
@@ -139,6 +189,8 @@ function selectDrafts(trx: Trx) {
 			"d.status",
 			"s.season",
 			"s.title",
+			sql<string>`(select min(z.time_zone) from collect.survey_state g join directory.state z using (state_fips)
+				where g.survey_id = s.survey_id)`.as("time_zone"),
 			"d.drafted_by",
 			"p.display_name",
 			"d.drafted_at",
@@ -150,6 +202,9 @@ function selectDrafts(trx: Trx) {
 			"d.audit",
 			"d.checksum",
 			"d.release_id",
+			"d.publish_at",
+			"d.revises",
+			"d.revision_reason",
 		]);
 }
 type DraftRow = Awaited<ReturnType<ReturnType<typeof selectDrafts>["executeTakeFirstOrThrow"]>>;
@@ -161,6 +216,7 @@ function toDraft(row: DraftRow): Draft {
 		status: row.status as DraftStatus,
 		season: row.season,
 		title: Words.parse(row.title),
+		timeZone: row.time_zone,
 		draftedBy: { personId: row.drafted_by, displayName: row.display_name },
 		draftedAt: row.drafted_at,
 		computedAt: row.computed_at,
@@ -171,5 +227,8 @@ function toDraft(row: DraftRow): Draft {
 		audit: row.audit === null ? null : ReleaseAudit.parse(row.audit),
 		checksum: row.checksum,
 		releaseId: row.release_id,
+		publishAt: row.publish_at,
+		revises: row.revises,
+		revisionReason: row.revision_reason === null ? null : Words.parse(row.revision_reason),
 	};
 }

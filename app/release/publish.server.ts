@@ -1,7 +1,6 @@
 import { createHash } from "node:crypto";
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
-import type { Coordinator } from "#app/auth/viewer.ts";
 import {
 	type DraftCell,
 	publishedFigure,
@@ -13,51 +12,53 @@ import {
 import { listDraftCells } from "./drafts.server.ts";
 
 export type Published = { outcome: "published"; releaseId: string; number: number };
-export type NotPublished = { outcome: "not_found" | "not_waiting" | "own_draft" | "changed" };
+export type NotPublished = { outcome: "not_found" | "not_waiting" | "not_yet" | "changed" };
 
 /**
- * Publishes an audited draft as a numbered release, in the caller's transaction: all of it or nothing. Only what may be
- * shown is copied; a withheld cell becomes one word. The approver is another person than the drafter, and the draft's
- * cells must still be those that were audited.
+ * Publishes an approved draft whose minute has come as a numbered release, in the caller's transaction: all of it or nothing.
+ * Only what may be shown is copied; a withheld cell becomes one word. The draft's cells must still be those that were audited.
  */
 export async function publishRelease(
 	trx: Trx,
-	viewer: Coordinator,
 	releaseDraftId: string,
 	codeVersion: string,
-	publishedAt: Date = new Date(),
 ): Promise<Published | NotPublished> {
-	const draft = await trx
+	const draft = await lockDraft(trx, releaseDraftId);
+	if (!draft) return { outcome: "not_found" };
+	if (draft.status !== "scheduled" || !draft.publish_at) return { outcome: "not_waiting" };
+	if (draft.publish_at > new Date()) return { outcome: "not_yet" };
+	const cells = await listDraftCells(trx, releaseDraftId);
+	if (draftChecksum(cells) !== draft.checksum) return { outcome: "changed" };
+
+	const releaseId = releaseDraftId; // one release a draft: trying twice meets the key
+	const method = ReleaseMethod.parse(draft.method);
+	const number = await insertRelease(trx, releaseId, {
+		draft,
+		method,
+		audit: ReleaseAudit.parse(draft.audit),
+		rules: ReleaseRules.parse(draft.rules),
+		cells,
+		codeVersion,
+		publishedAt: draft.publish_at,
+	});
+	await insertCells(trx, releaseId, method, cells);
+	await trx
+		.updateTable("collect.release_draft")
+		.set({ status: "approved", release_id: releaseId })
+		.where("release_draft_id", "=", releaseDraftId)
+		.execute();
+	return { outcome: "published", releaseId, number };
+}
+
+export function lockDraft(trx: Trx, releaseDraftId: string) {
+	return trx
 		.selectFrom("collect.release_draft")
 		.selectAll()
 		.where("release_draft_id", "=", releaseDraftId)
 		.forUpdate()
 		.executeTakeFirst();
-	if (!draft) return { outcome: "not_found" };
-	if (draft.status !== "audited") return { outcome: "not_waiting" };
-	if (draft.drafted_by === viewer.personId) return { outcome: "own_draft" };
-	const audit = ReleaseAudit.parse(draft.audit);
-	const cells = await listDraftCells(trx, releaseDraftId);
-	if (!audit.passed || draftChecksum(cells) !== draft.checksum) return { outcome: "changed" };
-
-	const releaseId = releaseDraftId; // one release a draft: trying twice meets the key
-	const method = ReleaseMethod.parse(draft.method);
-	const number = await insertRelease(trx, releaseId, {
-		method,
-		audit,
-		rules: ReleaseRules.parse(draft.rules),
-		cells,
-		codeVersion,
-		publishedAt,
-	});
-	await insertCells(trx, releaseId, method, cells);
-	await trx
-		.updateTable("collect.release_draft")
-		.set({ status: "approved", decided_by: viewer.personId, decided_at: publishedAt, release_id: releaseId })
-		.where("release_draft_id", "=", releaseDraftId)
-		.execute();
-	return { outcome: "published", releaseId, number };
 }
+type LockedDraft = NonNullable<Awaited<ReturnType<typeof lockDraft>>>;
 
 /** SHA-256 over the cells in a fixed order: what was audited is what is approved. */
 export function draftChecksum(cells: readonly DraftCell[]): string {
@@ -83,6 +84,7 @@ async function insertRelease(
 	trx: Trx,
 	releaseId: string,
 	made: {
+		draft: LockedDraft;
 		method: ReleaseMethod;
 		audit: ReleaseAudit;
 		rules: ReleaseRules;
@@ -91,12 +93,16 @@ async function insertRelease(
 		publishedAt: Date;
 	},
 ): Promise<number> {
-	const { method, audit, rules, cells, codeVersion, publishedAt } = made;
+	const { draft, method, audit, rules, cells, codeVersion, publishedAt } = made;
 	const { measures, areas, ...told } = method;
 	const row = await trx
 		.insertInto("release.release")
 		.values({
 			release_id: releaseId,
+			series_id: draft.survey_id,
+			edition: draft.revises ? await nextEdition(trx, draft.revises) : 1,
+			revises: draft.revises,
+			revision_reason: draft.revision_reason === null ? null : JSON.stringify(draft.revision_reason),
 			season: method.season,
 			form_key: method.formKey,
 			title: JSON.stringify(method.title),
@@ -140,6 +146,15 @@ async function insertRelease(
 		)
 		.execute();
 	return row.number;
+}
+
+async function nextEdition(trx: Trx, revises: string): Promise<number> {
+	const row = await trx
+		.selectFrom("release.release")
+		.select("edition")
+		.where("release_id", "=", revises)
+		.executeTakeFirstOrThrow();
+	return row.edition + 1;
 }
 
 async function insertCells(trx: Trx, releaseId: string, method: ReleaseMethod, cells: DraftCell[]): Promise<void> {

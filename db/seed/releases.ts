@@ -6,6 +6,7 @@ import { networkRules } from "#app/jobs/network-rules.ts";
 import { findReport, publishReport, saveReport, submitReport } from "#app/publish/drafting/reports.server.ts";
 import { startReport } from "#app/publish/drafting/start-report.server.ts";
 import { createDraft } from "#app/release/drafts.server.ts";
+import { approveDraft } from "#app/release/approval.server.ts";
 import { publishRelease } from "#app/release/publish.server.ts";
 import { draftWords } from "#app/routes/desk/parts/report-words.server.ts";
 import { moveLog } from "./move-log.ts";
@@ -35,13 +36,8 @@ export async function hasRelease(trx: Trx, { surveyId }: Season): Promise<boolea
  */
 export async function fillRelease(trx: Trx, team: Team, season: Released): Promise<string> {
 	const releaseDraftId = await draftRelease(trx, team.associate, season);
-	const published = await publishRelease(
-		trx,
-		team.coordinator,
-		releaseDraftId,
-		team.codeVersion,
-		season.release.publishedAt,
-	);
+	await approveDraft(trx, team.coordinator, releaseDraftId, season.release.publishedAt);
+	const published = await publishRelease(trx, releaseDraftId, team.codeVersion);
 	if (published.outcome !== "published") throw new Error(`release ${season.season}: ${published.outcome}`);
 	const { releaseId, number } = published;
 	const about = { subjectKind: "release", subjectId: releaseId, detail: { number } };

@@ -17,8 +17,8 @@ export async function addRelease(owner: Client, season = 2031): Promise<{ releas
 	for (const [table, trigger] of ofDraft) await owner.query(`alter table ${table} disable trigger ${trigger}`);
 	const words = JSON.stringify({ en: `After harvest ${season}`, es: `Después de la cosecha ${season}` });
 	const { rows } = await owner.query(
-		`insert into release.release (release_id, season, form_key, title, rules, method, audit, code_version, checksum)
-		values (gen_random_uuid(), $1, 'after_harvest', $2, $3, $4, '{}', 'test', 'sum') returning release_id, number`,
+		`insert into release.release (release_id, season, form_key, title, rules, method, audit, code_version, checksum, series_id)
+		values (gen_random_uuid(), $1, 'after_harvest', $2, $3, $4, '{}', 'test', 'sum', gen_random_uuid()) returning release_id, number`,
 		[
 			season,
 			words,

@@ -2,15 +2,16 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
-import { closeSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
-import { createSurvey } from "#app/collect/surveys.server.ts";
+import { closeSurvey } from "#app/collect/survey-opening.server.ts";
 import { computeReleaseDraft } from "#app/jobs/compute-release-draft.server.ts";
 import { networkRules } from "#app/jobs/network-rules.ts";
 import { listDataRows } from "#app/publish/data-file.server.ts";
 import { createDraft, findLatestDraft, listDraftCells } from "#app/release/drafts.server.ts";
+import { approveDraft } from "#app/release/approval.server.ts";
 import { publishRelease } from "#app/release/publish.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
-import { addOperation, addPerson, asDesk, connectOwner, draftOf, loadPlaces, useDatabase } from "./surveys-fixture.ts";
+import { addAnsweredSurvey, countyOwners, harvestedOf, normalOf } from "./answered-survey-fixture.ts";
+import { addPerson, asDesk, connectOwner, loadPlaces, useDatabase } from "./surveys-fixture.ts";
 
 let database: Awaited<ReturnType<typeof createTestDatabase>>;
 let owner: Client;
@@ -18,67 +19,19 @@ let associate: Associate;
 let coordinator: Coordinator;
 let surveyId: string;
 
-// Owners by county. Every operation answers, so that each estimate can be had by hand: weights are 1.
-const counties = { "19001": 8, "19003": 7, "19005": 2, "19007": 6 } as const;
-const normal = (i: number) => 1000 + 10 * i;
-const harvested = (i: number) => 300 + 25 * i;
-
 beforeAll(async () => {
 	database = await createTestDatabase();
 	useDatabase(database);
 	owner = await connectOwner(database.ownerUrl);
 	await loadPlaces(owner);
-	await owner.query(`insert into directory.district values ('IA-T', '19', 'Test Iowa') on conflict do nothing`);
-	for (const fips of Object.keys(counties)) {
-		await owner.query(
-			`insert into directory.county (county_fips, state_fips, district_key, name) values ($1, '19', 'IA-T', $2)
-			on conflict (county_fips) do update set district_key = 'IA-T'`,
-			[fips, `County ${fips}`],
-		);
-	}
 	associate = await addPerson(owner, "Iowa's associate", ["19"]);
 	coordinator = { ...(await addPerson(owner, "The coordinator", [])), role: "coordinator" } as unknown as Coordinator;
-	surveyId = await answeredSurvey();
+	surveyId = await addAnsweredSurvey(owner, associate);
 });
 afterAll(async () => {
 	await owner.end();
 	await database.drop();
 });
-
-async function answeredSurvey(): Promise<string> {
-	for (const [fips, owners] of Object.entries(counties)) {
-		for (let i = 0; i < owners; i++) {
-			const operationId = await addOperation(owner, { state: "19", name: `Orchard ${fips} ${i}`, email: null });
-			await owner.query("update directory.operation set county_fips = $1 where operation_id = $2", [fips, operationId]);
-		}
-	}
-	const made = await asDesk(associate, (trx) => createSurvey(trx, associate, draftOf(["19"])));
-	const { surveyId: id } = made as { surveyId: string };
-	await asDesk(associate, (trx) => openSurvey(trx, associate, id));
-	await owner.query(`update collect.frame_operation set disposition = 'complete' where survey_id = $1`, [id]);
-	for (const crop of ["apple", "all"]) await insertFacts(id, crop);
-	return id;
-}
-
-async function insertFacts(id: string, crop: string) {
-	const place = `row_number() over (partition by f.county_fips order by o.name) - 1`;
-	for (const [measure, y, x] of [
-		["crop_loss", `${normalSql} - ${harvestedSql}`, normalSql],
-		["base.bearing_trees", "40", "1"],
-		["base.normal_crop_lb", normalSql, "1"],
-		["base.harvested_lb", harvestedSql, "1"],
-	] as const) {
-		await owner.query(
-			`insert into collect.fact (survey_id, measure_key, crop_key, operation_id, owner_id, county_fips, state_fips, stratum_key, y, x)
-			select survey_id, $2, $3, operation_id, owner_id, county_fips, state_fips, stratum_key, ${y}, ${x} from (
-				select f.*, ${place} as i from collect.frame_operation f join directory.operation o using (operation_id)
-				where f.survey_id = $1) s`,
-			[id, measure, crop],
-		);
-	}
-}
-const normalSql = "(1000 + 10 * i)";
-const harvestedSql = "(300 + 25 * i)";
 
 async function draft(): Promise<string> {
 	const made = await asDesk(associate, (trx) => createDraft(trx, associate, surveyId, networkRules));
@@ -87,7 +40,10 @@ async function draft(): Promise<string> {
 	return made.releaseDraftId;
 }
 const publish = (viewer: Coordinator, draftId: string) =>
-	scopedTransaction({ kind: "desk", stateFips: [] }, (trx) => publishRelease(trx, viewer, draftId, "test"));
+	scopedTransaction({ kind: "desk", stateFips: [] }, async (trx) => {
+		const approved = await approveDraft(trx, viewer, draftId, new Date());
+		return approved.outcome === "scheduled" ? publishRelease(trx, draftId, "test") : approved;
+	});
 
 test("an open survey is not drafted, as a later answer could then be told by subtraction", async () => {
 	const made = await asDesk(associate, (trx) => createDraft(trx, associate, surveyId, networkRules));
@@ -107,11 +63,11 @@ test("a draft shows what may be shown, hides small counties with a shield, and p
 	expect(shields).toHaveLength(1);
 	expect(apple("network")?.status).toBe("shown");
 
-	const shown = Object.keys(counties).find((fips) => apple(fips)?.status === "shown") as keyof typeof counties;
-	const answers = Array.from({ length: counties[shown] }, (_, i) => i);
+	const shown = Object.keys(countyOwners).find((fips) => apple(fips)?.status === "shown") as keyof typeof countyOwners;
+	const answers = Array.from({ length: countyOwners[shown] }, (_, i) => i);
 	const sum = (of: (i: number) => number) => answers.reduce((total, i) => total + of(i), 0);
 	const loss = apple(shown)?.figures?.find((figure) => figure.measureKey === "crop_loss");
-	expect(loss?.value).toBeCloseTo(100 * (1 - sum(harvested) / sum(normal)), 9);
+	expect(loss?.value).toBeCloseTo(100 * (1 - sum(harvestedOf) / sum(normalOf)), 9);
 	expect(loss?.standardError).toBe(0); // everybody was asked and answered
 });
 
@@ -145,9 +101,9 @@ test("published figures are the draft's, rounded; hidden cells have none, whoeve
 	const region = published.find(
 		(row) => row.areaKey === "network" && row.cropKey === "apple" && row.measureKey === "crop_loss",
 	);
-	const all = Object.values(counties).flatMap((owners) => Array.from({ length: owners }, (_, i) => i));
+	const all = Object.values(countyOwners).flatMap((owners) => Array.from({ length: owners }, (_, i) => i));
 	const sum = (of: (i: number) => number) => all.reduce((total, i) => total + of(i), 0);
-	expect(region?.value).toBe(Math.round(100 * (1 - sum(harvested) / sum(normal))));
+	expect(region?.value).toBe(Math.round(100 * (1 - sum(harvestedOf) / sum(normalOf))));
 	expect(region?.respondentsBand).toBe("20-49");
 });
 

@@ -26,6 +26,11 @@ beforeAll(async () => {
 		"insert into log.event (person_id, action, subject_kind, subject_id) values ($1, 'survey.opened', 'survey', '1')",
 		[personId],
 	);
+	const withdrawn = await addRelease(owner, 2030);
+	await owner.query(
+		`insert into release.withdrawal (release_id, reason) values ($1, '{"en": "Wrong.", "es": "Mal."}')`,
+		[withdrawn.releaseId],
+	);
 	await owner.query("insert into log.download (person_id, release_id, file_key) values ($1, $2, 'cells.csv')", [
 		personId,
 		releaseId,
@@ -96,12 +101,15 @@ test("the application still logs and releases, so the refusals are not for want 
 	const events = await owner.query("select action from log.event order by event_id");
 	expect(events.rows.map(({ action }) => action)).toEqual(["survey.opened", "survey.closed"]);
 	await app.query("select set_config('tallygrove.scope', 'network', false)");
+	const draftId = await addDraft(owner, { status: "scheduled", audit: { passed: true }, checksum: "sum" });
 	await app.query(
-		`insert into release.release (release_id, season, form_key, title, rules, method, audit, code_version, checksum)
-		values ($1, 2032, 'after_harvest', '{}', '{}', '{}', '{}', 'test', 'sum')`,
-		[await addDraft(owner, { status: "audited", audit: { passed: true }, checksum: "sum" })],
+		`insert into release.release
+			(release_id, season, form_key, title, rules, method, audit, code_version, checksum, series_id)
+		select release_draft_id, 2032, 'after_harvest', '{}', '{}', '{}', '{}', 'test', 'sum', survey_id
+		from collect.release_draft where release_draft_id = $1`,
+		[draftId],
 	);
-	expect((await owner.query("select from release.release")).rowCount).toBe(2);
+	expect((await owner.query("select from release.release")).rowCount).toBe(3);
 });
 
 test("a figure for a withheld cell is refused, whoever writes it", async () => {

@@ -24,12 +24,17 @@ afterAll(async () => {
 });
 
 const passed = { passed: true };
-const release = (client: Client, releaseId: string, checksum = "sum") =>
-	client.query(
-		`insert into release.release (release_id, season, form_key, title, rules, method, audit, code_version, checksum)
-		values ($1, 2032, 'after_harvest', '{}', '{}', '{}', '{"passed": true}', 'test', $2)`,
-		[releaseId, checksum],
+async function release(client: Client, releaseId: string, checksum = "sum") {
+	const draft = await owner.query("select survey_id from collect.release_draft where release_draft_id = $1", [
+		releaseId,
+	]);
+	return client.query(
+		`insert into release.release
+			(release_id, season, form_key, title, rules, method, audit, code_version, checksum, series_id)
+		values ($1, 2032, 'after_harvest', '{}', '{}', '{}', '{"passed": true}', 'test', $2, $3)`,
+		[releaseId, checksum, draft.rows[0]?.survey_id ?? randomUUID()],
 	);
+}
 const refused = { message: "release_not_audited" };
 
 test.each<[string, NewDraft]>([
@@ -39,21 +44,26 @@ test.each<[string, NewDraft]>([
 	["that a job gave up", { status: "failed" }],
 	["that was sent back", { status: "rejected", audit: passed, checksum: "sum" }],
 	["that a newer one took the place of", { status: "superseded", audit: passed, checksum: "sum" }],
-	["approved before", { status: "approved", audit: passed, checksum: "sum" }],
+	["that nobody has approved", { status: "audited", audit: passed, checksum: "sum" }],
+	[
+		"whose minute has not come",
+		{ status: "scheduled", audit: passed, checksum: "sum", publishAt: "now() + interval '1 minute'" },
+	],
+	["published before", { status: "approved", audit: passed, checksum: "sum" }],
 ])("a draft %s is no release, for the application and for the owner of the tables", async (_told, draft) => {
 	const draftId = await addDraft(owner, draft);
 	for (const client of [app, owner]) await expect(release(client, draftId)).rejects.toMatchObject(refused);
 });
 
-test("an audited draft is one, though not with other cells than were audited, and nothing else is", async () => {
-	const draftId = await addDraft(owner, { status: "audited", audit: passed, checksum: "sum" });
+test("an approved draft is one, though not with other cells than were audited, and nothing else is", async () => {
+	const draftId = await addDraft(owner, { status: "scheduled", audit: passed, checksum: "sum" });
 	await expect(release(app, draftId, "another")).rejects.toMatchObject(refused);
 	await expect(release(app, randomUUID())).rejects.toMatchObject(refused);
 	await expect(release(app, draftId)).resolves.toMatchObject({ rowCount: 1 });
 });
 
 test("who sees no draft publishes none", async () => {
-	const draftId = await addDraft(owner, { status: "audited", audit: passed, checksum: "sum" });
+	const draftId = await addDraft(owner, { status: "scheduled", audit: passed, checksum: "sum" });
 	const stranger = new Client({ connectionString: database.appUrl });
 	await stranger.connect();
 	try {
@@ -64,7 +74,7 @@ test("who sees no draft publishes none", async () => {
 });
 
 test("no draft is called audited or approved without an audit that passed", async () => {
-	for (const status of ["audited", "approved"]) {
+	for (const status of ["audited", "scheduled", "approved"]) {
 		for (const audit of [null, { passed: false }]) {
 			await expect(addDraft(owner, { status, audit })).rejects.toMatchObject({ code: "23514" });
 		}
@@ -76,7 +86,7 @@ test("no draft is called audited or approved without an audit that passed", asyn
 });
 
 test("a cell is shown only where the audited draft shows it", async () => {
-	const draftId = await addDraft(owner, { status: "audited", audit: passed, checksum: "sum" });
+	const draftId = await addDraft(owner, { status: "scheduled", audit: passed, checksum: "sum" });
 	await owner.query(
 		`insert into collect.release_draft_cell (release_draft_id, crop_key, area_key, status, respondents, figures) values
 			($1, 'apple', '19', 'shown', 9, '[]'), ($1, 'apple', '19103', 'withheld', null, null)`,

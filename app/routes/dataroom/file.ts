@@ -16,6 +16,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	const file = files.find((name) => name === params.file);
 	const release = /^\d{1,9}$/.test(params.release) ? await findRelease(Number(params.release)) : undefined;
 	if (!file || !release) throw refusal("release_not_found");
+	if (release.withdrawn) throw refusal("release_withdrawn");
 
 	const language = getLanguage(context);
 	const body =

@@ -1,6 +1,7 @@
 import { useEffect } from "react";
 import { useTranslation } from "react-i18next";
 import { data, Form, href, redirect, useRevalidator } from "react-router";
+import { z } from "zod";
 import type { Route } from "./+types/release";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import { requireAssociate } from "#app/auth/guard.server.ts";
@@ -9,14 +10,21 @@ import { findSurvey } from "#app/collect/surveys.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
 import { Confirm } from "#app/components/confirm.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
+import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { DraftReport } from "#app/components/release/draft-report.tsx";
+import { Section } from "#app/components/section.tsx";
+import { TextField } from "#app/components/text-field.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { networkRules } from "#app/jobs/network-rules.ts";
 import { queueJob } from "#app/jobs/queue.server.ts";
+import { type FormValues, parseForm, type Problem } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import type { Words } from "#app/lib/words.ts";
+import { ReasonForm } from "#app/release/decision.schema.ts";
 import { DraftChoice, viewDraft } from "#app/release/draft-view.server.ts";
-import { createDraft, findLatestDraft } from "#app/release/drafts.server.ts";
+import { createDraft, findLatestDraft, findNewestEdition, findWithdrawal } from "#app/release/drafts.server.ts";
 import { draftReportProps } from "./parts/draft-report-props.ts";
 
 export async function loader({ context, params, request }: Route.LoaderArgs) {
@@ -26,17 +34,26 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 		const survey = await findSurvey(trx, desk.viewer, params.surveyId);
 		if (!survey) return undefined;
 		const draft = await findLatestDraft(trx, desk.viewer, params.surveyId);
-		return { state: survey.state, view: draft ? await viewDraft(trx, draft, choice) : null };
+		const withdrawn = draft?.releaseId ? await findWithdrawal(trx, draft.releaseId) : null;
+		const released = (await findNewestEdition(trx, params.surveyId)) !== null;
+		return { state: survey.state, released, withdrawn, view: draft ? await viewDraft(trx, draft, choice) : null };
 	});
 	if (!found) throw refusal("survey_not_found");
 	return found;
 }
 
-export async function action({ context, params }: Route.ActionArgs) {
+/** A first draft brings no reason along; one of a revision does. */
+const DraftForm = z.union([ReasonForm.extend({ step: z.literal("revise") }), z.object({ step: z.undefined() })]);
+
+export async function action({ context, params, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
+	const form = parseForm(DraftForm, await request.formData());
+	if (!form.ok) return data({ values: form.values, problems: form.problems, refused: null }, { status: 400 });
+	const { value } = form;
+	const reason = value.step === "revise" ? { en: value.reasonEn, es: value.reasonEs } : null;
 	const result = await desk.transaction(async (trx) => {
 		if (!(await findSurvey(trx, desk.viewer, params.surveyId))) return { outcome: "not_found" } as const;
-		const made = await createDraft(trx, desk.viewer, params.surveyId, networkRules);
+		const made = await createDraft(trx, desk.viewer, params.surveyId, networkRules, reason);
 		if (made.outcome !== "drafted") return made;
 		const { releaseDraftId } = made;
 		await queueJob(trx, "compute_release_draft", { releaseDraftId }, { maxAttempts: 3 });
@@ -45,19 +62,22 @@ export async function action({ context, params }: Route.ActionArgs) {
 		return made;
 	});
 	if (result.outcome === "not_found") throw refusal("survey_not_found");
-	if (result.outcome !== "drafted") return data({ refused: result.outcome }, { status: 409 });
+	if (result.outcome !== "drafted")
+		return data({ values: form.values, problems: [], refused: result.outcome }, { status: 409 });
 	context.get(sessionContext).flash("toast", { key: "release:toast.queued" });
 	return redirect(href("/desk/surveys/:surveyId/release", params), 303);
 }
 
 export default function ReleasePage({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("release");
-	const { state, view } = loaderData;
+	const { state, view, released } = loaderData;
 	return (
 		<>
-			{actionData && <Notice tone="attention">{t(`refused.${actionData.refused}`)}</Notice>}
-			{view ? <DraftPart view={view} /> : <NoDraft state={state} />}
-			{state === "closed" && view?.draft.status !== "approved" && <DraftButton again={view !== null} />}
+			<ErrorSummary problems={actionData?.problems} labels={{ reasonEn: t("reason.en"), reasonEs: t("reason.es") }} />
+			{actionData?.refused && <Notice tone="attention">{t(`refused.${actionData.refused}`)}</Notice>}
+			{view ? <DraftPart view={view} withdrawn={loaderData.withdrawn} /> : <NoDraft state={state} />}
+			{state === "closed" && !released && <DraftButton again={view !== null} />}
+			{released && <RevisionForm reason={view?.draft.revisionReason ?? null} {...actionData} />}
 		</>
 	);
 }
@@ -85,10 +105,46 @@ function DraftButton({ again }: { again: boolean }) {
 	);
 }
 
-function DraftPart({ view }: { view: Route.ComponentProps["loaderData"]["view"] & object }) {
+type RevisionFormProps = { reason: Words | null; values?: FormValues; problems?: Problem[] };
+
+/** Drafts published figures anew. A draft of a revision that waits lends its reason to the next. */
+function RevisionForm({ reason, values, problems }: RevisionFormProps) {
 	const { t } = useTranslation("release");
+	const field = (name: "reasonEn" | "reasonEs", label: string, standing?: string) => ({
+		name,
+		label,
+		defaultValue: typeof values?.[name] === "string" ? values[name] : (standing ?? ""),
+		problem: problems?.find((problem) => problem.field === name),
+		multiline: true,
+		rows: 3,
+		maxLength: 600,
+	});
+	return (
+		<Section title={t("revision.title")}>
+			<Form method="post" noValidate className="no-print max-w-xl">
+				<p className="mb-4">{t("revision.body")}</p>
+				<TextField {...field("reasonEn", t("reason.en"), reason?.en)} help={t("revision.help")} />
+				<TextField {...field("reasonEs", t("reason.es"), reason?.es)} />
+				<Confirm
+					trigger={t("revision.button")}
+					title={t("revision.confirmTitle")}
+					body={t("revision.confirmBody")}
+					confirmLabel={t("revision.button")}
+					name="step"
+					value="revise"
+				/>
+			</Form>
+		</Section>
+	);
+}
+
+type DraftPartProps = { view: Route.ComponentProps["loaderData"]["view"] & object; withdrawn: Words | null };
+
+function DraftPart({ view, withdrawn }: DraftPartProps) {
+	const { t, i18n } = useTranslation("release");
 	const format = useFormat();
 	const { draft } = view;
+	const state = withdrawn ? "withdrawn" : draft.status;
 	const waiting = draft.status === "queued";
 	useRefreshWhile(waiting);
 	const report = draftReportProps(view);
@@ -102,16 +158,18 @@ function DraftPart({ view }: { view: Route.ComponentProps["loaderData"]["view"] 
 			)}
 			<Notice
 				tone={draft.status === "audit_failed" || draft.status === "failed" ? "caution" : "info"}
-				title={t(`status.${draft.status}.title`)}
+				title={t(`status.${state}.title`)}
 			>
 				<output className="block">
-					{t(`status.${draft.status}.body`, {
+					{t(`status.${state}.body`, {
 						name: draft.draftedBy.displayName,
 						moment: format.moment(draft.draftedAt),
+						publishes: draft.publishAt ? format.moment(draft.publishAt, draft.timeZone) : "",
 					})}
 				</output>
+				{withdrawn && <p className="mt-2">{wordsIn(withdrawn, i18n.language)}</p>}
 				{draft.decisionNote && <p className="mt-2">{t("status.note", { note: draft.decisionNote })}</p>}
-				{draft.status === "approved" && (
+				{state === "approved" && (
 					<p className="mt-3">
 						<ButtonLink to={href("/desk/reports")} kind="secondary">
 							{t("status.toReports")}

@@ -30,6 +30,7 @@ const tones = {
 	failed: "stop",
 	audit_failed: "stop",
 	audited: "attention",
+	scheduled: "attention",
 	approved: "good",
 	rejected: "neutral",
 	superseded: "neutral",

@@ -10,8 +10,10 @@ import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { env } from "#app/lib/env.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { countCells, findRelease, listCrops, listMeasures } from "#app/publish/releases.server.ts";
+import { countCells, findRelease, listCrops, listEditions, listMeasures } from "#app/publish/releases.server.ts";
+import type { Release } from "#app/publish/release.ts";
 import { Codebook } from "./parts/codebook.tsx";
+import { ReleaseNotice, ReleaseState } from "./parts/release-state.tsx";
 
 const Number = z.coerce.number().int().positive().max(2_147_483_647);
 
@@ -19,13 +21,22 @@ export async function loader({ params }: Route.LoaderArgs) {
 	const number = Number.safeParse(params.release);
 	const release = number.success ? await findRelease(number.data) : undefined;
 	if (!release) throw refusal("release_not_found");
-	const [measures, crops, counties, districts] = await Promise.all([
+	const [editions, measures, crops, counties, districts] = await Promise.all([
+		listEditions(release.seriesId),
 		listMeasures(release.releaseId),
 		listCrops(release.releaseId),
 		countCells(release.releaseId, "county"),
 		countCells(release.releaseId, "district"),
 	]);
-	return { release, measures, crops, counties, districts, address: `${env().BASE_URL}/data/${release.number}` };
+	return {
+		release,
+		editions,
+		measures,
+		crops,
+		counties,
+		districts,
+		address: `${env().BASE_URL}/data/${release.number}`,
+	};
 }
 
 export default function DataRelease({ loaderData }: Route.ComponentProps) {
@@ -43,21 +54,31 @@ export default function DataRelease({ loaderData }: Route.ComponentProps) {
 			title={title}
 			lead={t("data.one.lead", { season: release.season, date: format.dayOf(release.publishedAt) })}
 			actions={
-				<>
-					<ButtonLink to={`${href("/map")}?release=${release.number}`}>{t("home.openMap")}</ButtonLink>
-					<ButtonLink to={href("/dataroom")} kind="secondary">
-						{t("data.files.link")}
-					</ButtonLink>
-				</>
+				release.withdrawn ? null : (
+					<>
+						<ButtonLink to={`${href("/map")}?release=${release.number}`}>{t("home.openMap")}</ButtonLink>
+						<ButtonLink to={href("/dataroom")} kind="secondary">
+							{t("data.files.link")}
+						</ButtonLink>
+					</>
+				)
 			}
 		>
+			<ReleaseNotice release={release} />
 			<Section title={t("data.one.facts")}>
 				<Facts data={loaderData} />
 			</Section>
-			<Section title={t("data.one.crops")}>
-				<p>{format.list(crops.map((crop) => t(`common:crop.${crop}`)))}</p>
-			</Section>
+			{crops.length > 0 && (
+				<Section title={t("data.one.crops")}>
+					<p>{format.list(crops.map((crop) => t(`common:crop.${crop}`)))}</p>
+				</Section>
+			)}
 			<Codebook measures={measures} />
+			{loaderData.editions.length > 1 && (
+				<Section title={t("data.one.editions")}>
+					<Editions editions={loaderData.editions} own={release.number} />
+				</Section>
+			)}
 			<Section title={t("data.one.cite")}>
 				<p className="max-w-prose border-l-4 border-damson bg-damson-wash px-5 py-4">
 					{t("data.one.citation", {
@@ -74,6 +95,30 @@ export default function DataRelease({ loaderData }: Route.ComponentProps) {
 				</p>
 			</Section>
 		</Page>
+	);
+}
+
+function Editions({ editions, own }: { editions: Release[]; own: number }) {
+	const { t } = useTranslation("public");
+	const format = useFormat();
+	return (
+		<ul className="space-y-2">
+			{editions.map((edition) => (
+				<li key={edition.releaseId} className="flex flex-wrap items-center gap-x-4 gap-y-1">
+					<Link
+						to={href("/data/:release", { release: `${edition.number}` })}
+						aria-current={edition.number === own ? "page" : undefined}
+					>
+						{t("data.one.edition", {
+							edition: format.number(edition.edition),
+							number: edition.number,
+							date: format.dayOf(edition.publishedAt),
+						})}
+					</Link>
+					<ReleaseState release={edition} />
+				</li>
+			))}
+		</ul>
 	);
 }
 
@@ -106,8 +151,8 @@ function Facts({ data: { release, counties, districts } }: { data: Route.Compone
 			term: t("data.one.answeredIn", { state: t(`common:state.${stateFips}`) }),
 			detail: t("data.one.answeredOf", { answered: format.number(answered), asked: format.number(asked) }),
 		})),
-		{ term: t("data.one.countyCells"), detail: counted(counties) },
-		{ term: t("data.one.districtCells"), detail: counted(districts) },
+		!release.withdrawn && { term: t("data.one.countyCells"), detail: counted(counties) },
+		!release.withdrawn && { term: t("data.one.districtCells"), detail: counted(districts) },
 		rules.minimumOwners && {
 			term: t("data.one.minimum"),
 			detail: t("data.one.minimumOwners", { count: rules.minimumOwners, value: format.number(rules.minimumOwners) }),

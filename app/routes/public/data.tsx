@@ -8,10 +8,11 @@ import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { Release } from "#app/publish/release.ts";
-import { listReleases } from "#app/publish/releases.server.ts";
+import { listEveryRelease } from "#app/publish/releases.server.ts";
+import { ReleaseState } from "./parts/release-state.tsx";
 
 export async function loader() {
-	return { releases: await listReleases() };
+	return { releases: await listEveryRelease() };
 }
 
 export default function Data({ loaderData: { releases } }: Route.ComponentProps) {
@@ -48,6 +49,11 @@ function useReleaseColumns(): Column<Release>[] {
 					{t("data.named", { number, season, title: wordsIn(title, i18n.language) })}
 				</Link>
 			),
+		},
+		{
+			key: "state",
+			header: t("data.state"),
+			cell: (release) => <ReleaseState release={release} />,
 		},
 		{ key: "season", header: t("map.form.season"), numeric: true, cell: ({ season }) => season },
 		{ key: "published", header: t("data.published"), cell: ({ publishedAt }) => format.dayOf(publishedAt) },

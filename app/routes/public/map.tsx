@@ -1,6 +1,6 @@
 import { useState } from "react";
 import { useTranslation } from "react-i18next";
-import { href, type ShouldRevalidateFunctionArgs } from "react-router";
+import { href, redirect, type ShouldRevalidateFunctionArgs } from "react-router";
 import type { Route } from "./+types/map";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { useAreaName } from "#app/components/map/area-name.ts";
@@ -17,17 +17,19 @@ import { mapFiguresOf } from "#app/publish/figures.server.ts";
 import { countiesAddress } from "#app/publish/geometry.server.ts";
 import { choose, readMapQuery } from "#app/publish/map-choice.ts";
 import { pictureOf } from "#app/publish/picture.server.ts";
-import { listCoveredStates, listCrops, listMeasures, listReleases } from "#app/publish/releases.server.ts";
+import { findRelease, listCoveredStates, listCrops, listMeasures, listReleases } from "#app/publish/releases.server.ts";
 import { tableRows } from "#app/publish/table-rows.ts";
 import { MapForm } from "./parts/map-form.tsx";
 import { MapTable } from "./parts/map-table.tsx";
+import { ReleaseNotice } from "./parts/release-state.tsx";
 import { useChosenArea } from "./parts/use-chosen-area.ts";
 
 export async function loader({ request, context }: Route.LoaderArgs) {
 	const query = readMapQuery(request.url);
 	const releases = await listReleases();
-	const release = query.release ? releases.find(({ number }) => number === query.release) : releases[0];
+	const release = query.release ? await findRelease(query.release) : releases[0];
 	if (!release && query.release) throw refusal("release_not_found");
+	if (release?.withdrawn) throw redirect(href("/data/:release", { release: `${release.number}` }));
 	if (!release) return { map: null };
 
 	const measures = await listMeasures(release.releaseId);
@@ -46,7 +48,8 @@ export async function loader({ request, context }: Route.LoaderArgs) {
 	const { compare } = formatterFor(getLanguage(context), getT(context, "common"));
 	const [picture, outlines] = [pictureOf(states), countiesAddress(states)];
 	if (!figures || !picture || !outlines) return { map: null };
-	const seasons = releases.map(({ number, season, title }) => ({ number, season, title }));
+	const offered = release.replacedBy ? [release, ...releases] : releases;
+	const seasons = offered.map(({ number, season, title }) => ({ number, season, title }));
 	return {
 		map: {
 			...figures,
@@ -106,6 +109,7 @@ function Map({ map }: { map: MapData }) {
 	const withoutCell = Object.values(areaOfCounty).filter((areaKey) => !areaKey || !byArea[areaKey]).length;
 	return (
 		<Page title={title} lead={wordsIn(measure.description, i18n.language)}>
+			<ReleaseNotice release={release} />
 			<MapForm map={map} chosen={chosen} onChoose={chooseArea} />
 			{map.changed && <Notice tone="info">{t("map.changed", { shown: title })}</Notice>}
 			<div className="grid grid-cols-[minmax(0,1fr)] gap-6 lg:grid-cols-[minmax(0,1fr)_17rem]">
