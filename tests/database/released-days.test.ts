@@ -12,6 +12,7 @@ import { listDataRows } from "#app/publish/data-file.server.ts";
 import { cellsCsv } from "#app/publish/data-file.ts";
 import { findMapFigures } from "#app/publish/figures.server.ts";
 import { createDraft, listDraftCells } from "#app/release/drafts.server.ts";
+import { approveDraft } from "#app/release/approval.server.ts";
 import { type Published, publishRelease } from "#app/release/publish.server.ts";
 import { findFigureOrigin } from "#app/routes/desk/parts/estimates/figure-origin.server.ts";
 import { createTestDatabase, type TestDatabase } from "#tests/helpers/database.ts";
@@ -106,9 +107,10 @@ test("a draft holds each area's median and quartiles, as counted by hand", async
 	expect(figure("network")).toMatchObject(network);
 	expect(figure("network", "all")).toBeUndefined();
 
-	const published = await scopedTransaction({ kind: "desk", stateFips: [] }, (trx) =>
-		publishRelease(trx, coordinator, made.releaseDraftId, "test"),
-	);
+	const published = await scopedTransaction({ kind: "desk", stateFips: [] }, async (trx) => {
+		await approveDraft(trx, coordinator, made.releaseDraftId, new Date());
+		return publishRelease(trx, made.releaseDraftId, "test");
+	});
 	expect(published.outcome).toBe("published");
 	release = published as Published;
 });
