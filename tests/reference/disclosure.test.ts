@@ -1,7 +1,12 @@
 // Sources: see data/disclosure/SOURCES.md.
+import { readFile } from "node:fs/promises";
 import { beforeAll, describe, expect, test } from "vitest";
+import { everybody } from "#app/protect/attackers.ts";
 import { feasibleIntervals } from "#app/protect/audit.ts";
+import { blocksOfTable } from "#app/protect/blocks-of-table.ts";
+import { solveExactly } from "#app/protect/exact.ts";
 import { ownCells } from "#app/protect/levels.ts";
+import { lossByCell } from "#app/protect/loss.ts";
 import { protect } from "#app/protect/protect.ts";
 import { loadSolver, type Solver } from "#app/protect/solver.ts";
 import { readLarge, readStored, rulesOf, tableOf, VALUE } from "./disclosure-data.ts";
@@ -57,21 +62,24 @@ describe.each(tables)("%s", (name) => {
 		compare(count.pattern, count.primary_intervals);
 	});
 
-	test("our shields pass the audit, and none beats the proven optimum", async () => {
-		const stored = await readStored(`${folder}${name}.json`);
-		const { table } = tableOf(stored);
-		const { pattern, audit } = await protect(table, rulesOf(stored.rule), {
-			ownersAttack: false,
-			grandTotal: "never",
-		});
-		expect(audit.passed).toBe(true);
-		const withheld = table.cells.filter(({ key }) => pattern.get(key)!.status === "withheld");
-		const lost = withheld.reduce((sum, cell) => sum + cell.quantities[VALUE]!.total, 0);
-		expect(lost).toBeGreaterThanOrEqual(stored.expected.min_value.optimal_total);
-		expect(withheld.length).toBeGreaterThanOrEqual(stored.expected.min_count.optimal_total);
-		// Near the least loss, not proven least: 1.00 to 1.33 on these tables.
-		expect(lost / stored.expected.min_value.optimal_total).toBeLessThan(1.4);
-	});
+	test.each(["value", "count"] as const)(
+		"our shields lose the least %s, proven, and pass the audit",
+		async (objective) => {
+			const stored = await readStored(`${folder}${name}.json`);
+			const { table } = tableOf(stored);
+			const { pattern, audit, loss } = await protect(table, rulesOf(stored.rule), {
+				ownersAttack: false,
+				grandTotal: "never",
+				objective,
+			});
+			expect(audit.passed).toBe(true);
+			const withheld = table.cells.filter(({ key }) => pattern.get(key)!.status === "withheld");
+			const value = withheld.reduce((sum, cell) => sum + cell.quantities[VALUE]!.total, 0);
+			const lost = objective === "value" ? value : withheld.length;
+			expect(lost).toBe(stored.expected[`min_${objective}`].optimal_total);
+			expect(loss!.bound).toBeCloseTo(loss!.lost, 9);
+		},
+	);
 
 	test("shields hold against owners who know a cell alone", async () => {
 		const stored = await readStored(`${folder}${name}.json`);
@@ -98,6 +106,30 @@ test("3,000 counties: the cells withheld for their own sake are those of the ref
 	expect(own).toHaveLength(4215);
 	expect(own.reduce((sum, { index }) => sum + table.cells[index]!.quantities[VALUE]!.total, 0)).toBe(2_467_482);
 });
+
+test.each(["value", "count"] as const)(
+	"3,000 counties: 25 districts lose the least %s, as stored",
+	async (objective) => {
+		const table = await readLarge(`${folder}large_county_category.csv`);
+		const expected = JSON.parse(await readFile(`${folder}large_expected.json`, "utf8"));
+		const own = ownCells(table, rulesOf(expected.rule));
+		const loss = lossByCell(table, objective);
+		const districts = blocksOfTable(table, 100);
+		expect(districts).toHaveLength(250);
+		for (const { root, inside } of districts.slice(100, 125)) {
+			const members = new Set(inside);
+			const ownHere = own.filter(({ index }) => members.has(index));
+			const certain = new Set(ownHere.map(({ index }) => index));
+			const problem = { table, own: ownHere, attackers: [everybody(table)], scope: inside, certain };
+			const { shields, ...found } = solveExactly(solver, { ...problem, outside: "still" }, loss, null);
+			const withheld = [...certain, ...shields!];
+			const value = withheld.reduce((sum, index) => sum + table.cells[index]!.quantities[VALUE]!.total, 0);
+			const lost = objective === "value" ? value : withheld.length;
+			expect([root, lost]).toEqual([root, expected[`min_${objective}`].per_district_optimum_total[root]]);
+			expect(found.bound).toBe(found.loss);
+		}
+	},
+);
 
 test.each([...tables.map((name) => `${name}.json`), "published_examples.json", "large_county_category.csv"])(
 	"verify recomputes %s",
