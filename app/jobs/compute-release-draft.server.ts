@@ -7,7 +7,8 @@ import { estimateSurvey } from "#app/estimate/survey.ts";
 import { log } from "#app/lib/log.server.ts";
 import { listOwnerShares } from "#app/protect/owner-shares.server.ts";
 import type { OwnerShares } from "#app/protect/owner-shares.ts";
-import { cellKey, protect } from "#app/protect/protect.ts";
+import { cellKey } from "#app/protect/protect.ts";
+import { protectInThread } from "#app/protect/protect-thread.server.ts";
 import { ALL_CROPS, surveyTable } from "#app/protect/survey-table.ts";
 import { type DraftCell, ReleaseAudit, type ReleaseMethod, ReleaseRules } from "#app/release/draft.ts";
 import { draftChecksum } from "#app/release/publish.server.ts";
@@ -44,7 +45,7 @@ export async function computeReleaseDraft(
 	const areas = method.areas.flatMap(({ areaKey, parentKey }) => (parentKey === null ? [] : [{ areaKey, parentKey }]));
 	const started = performance.now();
 	const table = surveyTable(areas, method.cropKeys, shares, inputs.baseKeys, inputs.sensitive.counted);
-	const protection = await protect(table, rules);
+	const protection = await protectInThread(table, rules);
 	const seconds = (performance.now() - started) / 1000;
 	const { estimates, joins } = estimateSurvey({
 		measures: method.measures,

@@ -1,6 +1,6 @@
 import { type Attacker, everybody, soleOwners } from "./attackers.ts";
 import { blocksOfTable, type TableBlock } from "./blocks-of-table.ts";
-import { defaultLimits, type ExactLimits, solveExactly } from "./exact.ts";
+import { defaultLimits, type ExactLimits, solveExactly, type Watch } from "./exact.ts";
 import type { OwnCell } from "./levels.ts";
 import { lossByCell, type Objective, sumOver } from "./loss.ts";
 import { chooseShields, type ShieldOptions } from "./shields.ts";
@@ -10,6 +10,8 @@ import type { ProtectionTable } from "./table.ts";
 export interface ChoiceOptions extends ShieldOptions {
 	objective: Objective;
 	limits?: ExactLimits;
+	/** Cells times quantities up to which a block is solved in one. */
+	blockCells?: number;
 }
 
 /** All that a thread must know to choose the shields of any block. */
@@ -24,6 +26,8 @@ export interface Plan {
 
 export interface BlockChoice {
 	shields: number[];
+	/** of these shields */
+	loss: number;
 	/** Whether these shields protect the block's own cells whatever becomes of the cells outside. */
 	settled: boolean;
 	/** No pattern of the whole table loses less among this block's cells, shields alone counted. */
@@ -46,7 +50,7 @@ export interface Choice {
 export function planChoice(table: ProtectionTable, own: readonly OwnCell[], options: ChoiceOptions): Plan {
 	const attackers = [everybody(table), ...(options.ownersAttack ? soleOwners(table) : [])];
 	const loss = lossByCell(table, options.objective);
-	return { table, own, options, attackers, loss, blocks: blocksOfTable(table) };
+	return { table, own, options, attackers, loss, blocks: blocksOfTable(table, options.blockCells) };
 }
 
 /**
@@ -56,8 +60,13 @@ export function planChoice(table: ProtectionTable, own: readonly OwnCell[], opti
  * else the block is chosen once more with its margin shown.
  * @returns null when nothing protects the block's cells, not even with help from outside.
  */
-export function chooseBlock(solver: Solver, plan: Plan, block: TableBlock): BlockChoice | null {
-	if (block.margins.length === 0) return chooseWhole(solver, plan, block);
+export function chooseBlock(
+	solver: Solver,
+	plan: Plan,
+	block: TableBlock,
+	watch: Watch = () => {},
+): BlockChoice | null {
+	if (block.margins.length === 0) return chooseWhole(solver, plan, block, watch);
 	const wide = solve(
 		solver,
 		plan,
@@ -70,23 +79,31 @@ export function chooseBlock(solver: Solver, plan: Plan, block: TableBlock): Bloc
 	const margin = new Set(block.margins);
 	const ownMargin = plan.own.some(({ index }) => margin.has(index));
 	if (!ownMargin && wide.shields && !wide.shields.some((index) => margin.has(index))) {
-		return { shields: wide.shields, settled: true, bound, proven, linearPrograms: wide.linearPrograms };
+		return {
+			shields: wide.shields,
+			loss: wide.loss,
+			settled: true,
+			bound,
+			proven,
+			linearPrograms: wide.linearPrograms,
+		};
 	}
-	const close = solve(solver, plan, block.inside, "still", null);
+	const close = solve(solver, plan, block.inside, "still", null, watch);
 	const linearPrograms = wide.linearPrograms + close.linearPrograms;
 	const settled = close.shields !== null;
-	return { shields: close.shields ?? wide.shields ?? [], settled, bound, proven: false, linearPrograms };
+	const shields = close.shields ?? wide.shields ?? [];
+	return { shields, loss: sumOver(shields, plan.loss), settled, bound, proven: false, linearPrograms };
 }
 
-function chooseWhole(solver: Solver, plan: Plan, { inside }: TableBlock): BlockChoice | null {
+function chooseWhole(solver: Solver, plan: Plan, { inside }: TableBlock, watch: Watch): BlockChoice | null {
 	const { table, own, options } = plan;
 	const start = chooseShields(solver, table, own, options);
 	if (!start) return null;
 	const grand = table.cells.findIndex((c) => c.coordinates.every((code, d) => code === table.hierarchies[d]!.root));
 	const locked = !start.has(grand) && !own.some(({ index }) => index === grand);
 	const scope = locked ? inside.filter((index) => index !== grand) : inside;
-	const { shields, bound, loss, linearPrograms } = solve(solver, plan, scope, "still", [...start]);
-	return { shields: shields ?? [...start], settled: true, bound, proven: bound === loss, linearPrograms };
+	const { shields, bound, loss, linearPrograms } = solve(solver, plan, scope, "still", [...start], watch);
+	return { shields: shields ?? [...start], loss, settled: true, bound, proven: bound === loss, linearPrograms };
 }
 
 function solve(
@@ -95,13 +112,14 @@ function solve(
 	scope: readonly number[],
 	outside: "still" | "free",
 	start: readonly number[] | null,
+	watch: Watch,
 ) {
 	const { table, attackers, loss, options } = plan;
 	const members = new Set(scope);
 	const own = plan.own.filter(({ index }) => members.has(index));
 	const certain = new Set(own.map(({ index }) => index));
 	const problem = { table, own, attackers, scope, certain, outside };
-	const result = solveExactly(solver, problem, loss, start, options.limits ?? defaultLimits);
+	const result = solveExactly(solver, problem, loss, start, options.limits ?? defaultLimits, watch);
 	return { ...result, proven: result.bound === result.loss };
 }
 

@@ -102,7 +102,7 @@ class Search {
 			}
 			if (outcome.status !== "optimal") throw new Error(`the relaxed program ended ${outcome.status}`);
 			this.#bound = Math.max(this.#bound, outcome.objective);
-			watch(this.#loss, this.#bound);
+			watch(this.#loss, Math.min(this.#loss, this.#bound));
 			if (this.#closeable(outcome)) return;
 			const cuts = this.separator.cuts(outcome.values, false);
 			if (cuts.length === 0) return;
@@ -126,7 +126,7 @@ class Search {
 			const faults = cuts.length === 0 ? this.#addFaults(outcome.chosen) : 0;
 			if (cuts.length > 0) this.#add(cuts);
 			else if (faults === 0) this.#keep(outcome.chosen);
-			watch(this.#loss, this.#bound);
+			watch(this.#loss, Math.min(this.#loss, this.#bound));
 			if (faults === 0 && cuts.length === 0 && outcome.status === "limited") return;
 		}
 	}
