@@ -109,7 +109,7 @@ class Crew {
 
 	/** The next block; when all are chosen, this thread concludes. */
 	#give(worker: Worker) {
-		const order = (message: ThreadOrder) => worker.postMessage(message);
+		const order = (message: ThreadOrder) => worker.postMessage(message, []);
 		if (this.#next < this.#blocks) order({ kind: "block", block: this.#next++ });
 		else if (this.#choices.size === this.#blocks) {
 			const choices = Array.from({ length: this.#blocks }, (_, block) => this.#choices.get(block)!);
