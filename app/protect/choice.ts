@@ -67,13 +67,8 @@ export function chooseBlock(
 	watch: Watch = () => {},
 ): BlockChoice | null {
 	if (block.margins.length === 0) return chooseWhole(solver, plan, block, watch);
-	const wide = solve(
-		solver,
-		plan,
-		[...block.inside, ...block.margins].toSorted((a, b) => a - b),
-		"free",
-		null,
-	);
+	const all = [...block.inside, ...block.margins].toSorted((a, b) => a - b);
+	const wide = solve(solver, plan, all, "free", null, watch);
 	const { bound, proven } = wide;
 	if (bound === Infinity) return null;
 	const margin = new Set(block.margins);
