@@ -7,9 +7,12 @@ import { estimateSurvey } from "#app/estimate/survey.ts";
 import { log } from "#app/lib/log.server.ts";
 import { listOwnerShares } from "#app/protect/owner-shares.server.ts";
 import type { OwnerShares } from "#app/protect/owner-shares.ts";
+import { ALL_CROPS } from "#app/protect/codes.ts";
+import type { Holding } from "#app/protect/holdings.ts";
+import { listHoldings } from "#app/protect/holdings.server.ts";
 import { cellKey } from "#app/protect/protect.ts";
 import { protectInThread } from "#app/protect/protect-thread.server.ts";
-import { ALL_CROPS, surveyTable } from "#app/protect/survey-table.ts";
+import { surveyTable } from "#app/protect/survey-table.ts";
 import { type DraftCell, ReleaseAudit, type ReleaseMethod, ReleaseRules } from "#app/release/draft.ts";
 import { draftChecksum } from "#app/release/publish.server.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
@@ -26,6 +29,7 @@ type Inputs = {
 	baseKeys: string[];
 	sensitive: SensitiveMeasures;
 	shares: OwnerShares[];
+	holdings: Holding[];
 };
 
 /**
@@ -44,7 +48,14 @@ export async function computeReleaseDraft(
 	const cutOffs = { steady, care, steadyDays, careDays };
 	const areas = method.areas.flatMap(({ areaKey, parentKey }) => (parentKey === null ? [] : [{ areaKey, parentKey }]));
 	const started = performance.now();
-	const table = surveyTable(areas, method.cropKeys, shares, inputs.baseKeys, inputs.sensitive.counted);
+	const table = surveyTable({
+		areas,
+		cropKeys: method.cropKeys,
+		shares,
+		baseKeys: inputs.baseKeys,
+		sensitiveKeys: inputs.sensitive.counted,
+		holdings: inputs.holdings,
+	});
 	const protection = await protectInThread(table, rules);
 	const seconds = (performance.now() - started) / 1000;
 	const { estimates, joins } = estimateSurvey({
@@ -119,6 +130,7 @@ async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | un
 			countedKeys: sensitive.counted,
 			largestOwners: rules.largest?.owners,
 		}),
+		holdings: await listHoldings(trx, surveyId, { baseKeys, countedKeys: sensitive.counted }),
 	};
 }
 

@@ -4,7 +4,8 @@ import * as fc from "fast-check";
 import loadHighs from "highs";
 import { expect, test } from "vitest";
 import { protect, type Protection, type ProtectionRules } from "./protect.ts";
-import { REGION, surveyTable } from "./survey-table.ts";
+import { REGION } from "./codes.ts";
+import { surveyTable } from "./survey-table.ts";
 
 const areas = { d1: ["c1", "c2"], d2: ["c3", "c4", "c5"] };
 const counties = Object.values(areas).flat();
@@ -79,7 +80,7 @@ function tableOf(cells: ReturnType<typeof count>) {
 		const soleOwner = owners.size === 1 ? String([...owners.keys()][0]) : null;
 		return { areaKey, cropKey, owners: owners.size, fewestOwners: owners.size, soleOwner, quantities };
 	});
-	return surveyTable(areaList, crops, shares, base.slice(1));
+	return surveyTable({ areas: areaList, cropKeys: crops, shares, baseKeys: base.slice(1) });
 }
 
 /** Everything an attacker can write down about the smallest cells from the published ones, as rows of a program. */

@@ -1,5 +1,7 @@
 import type { OwnCell } from "./levels.ts";
+import { partsOf } from "./parts.ts";
 import type { ProtectionTable } from "./table.ts";
+import { publicBounds, type Told } from "./told.ts";
 
 /**
  * Someone who may try to work out withheld cells, told as what they know beyond the shown cells, the equations and that
@@ -29,12 +31,13 @@ export interface Attacker {
 	asks(own: OwnCell, quantity: string, direction: 1 | -1): number;
 }
 
-/** Who knows nothing but what is shown. */
-export function everybody(table: ProtectionTable): Attacker {
+/** Who knows nothing but what is shown and what is known outside of this release. */
+export function everybody(table: ProtectionTable, told?: Told): Attacker {
 	return {
 		name: "everybody",
 		knows: [],
-		asks: (own, quantity, direction) => levelOf(table, own, quantity, direction),
+		bounds: publicBounds(table, told),
+		asks: (own, quantity, direction) => levelOf(table, own, quantity, direction, told),
 	};
 }
 
@@ -42,19 +45,57 @@ export function everybody(table: ProtectionTable): Attacker {
  * Each owner who is alone in some cell. An own cell that its single owner knows is not protected from that owner; where
  * the owner has a part in the cell, only the upper side is asked: the level counts that owner's part as known already.
  */
-export function soleOwners(table: ProtectionTable): Attacker[] {
+export function soleOwners(table: ProtectionTable, told?: Told): Attacker[] {
+	const bounds = publicBounds(table, told);
 	return [...soleHoldings(table)].map(([name, knows]) => ({
 		name,
 		knows,
+		bounds,
 		asks: (own, quantity, direction) => {
 			if (knows.includes(own.index)) return 0;
 			if (direction < 0 && knows.some((cell) => liesInside(table, cell, own.index))) return 0;
-			return levelOf(table, own, quantity, direction);
+			return levelOf(table, own, quantity, direction, told);
 		},
 	}));
 }
 
-function levelOf(table: ProtectionTable, own: OwnCell, quantity: string, direction: 1 | -1): number {
+/**
+ * Single owners with all that they know: each cell that they have a part in is at least as much as that part. Whom to name,
+ * the audit tells: most owners' parts are too small to help them.
+ */
+export function ownersWithParts(table: ProtectionTable, names: ReadonlySet<string>, told?: Told): Attacker[] {
+	const parts = partsOf(table);
+	const held = new Map([...names].map((name) => [name, new Map<number, readonly number[]>()]));
+	for (const index of table.cells.keys()) {
+		for (const { owner, amounts } of parts(index)) held.get(owner)?.set(index, amounts);
+	}
+	const seen = publicBounds(table, told);
+	return [...held].map(([name, amounts]) => ({
+		name,
+		knows: [...amounts.keys()].filter((index) => table.cells[index]!.owners === 1),
+		bounds: [
+			...seen,
+			...table.quantities.flatMap(({ key }, q) =>
+				[...amounts].map(([cell, part]) => ({ cell, quantity: key, lower: part[q]!, upper: Infinity })),
+			),
+		],
+		asks: (own, quantity, direction) => {
+			const alone = table.cells[own.index]!.owners === 1;
+			if (amounts.has(own.index) && (alone || direction < 0)) return 0;
+			return levelOf(table, own, quantity, direction, told);
+		},
+	}));
+}
+
+function levelOf(
+	table: ProtectionTable,
+	own: OwnCell,
+	quantity: string,
+	direction: 1 | -1,
+	told: Told | undefined,
+): number {
+	// What is told has nothing left to protect.
+	if (told?.cells?.get(quantity)?.has(own.index)) return 0;
 	const level = own.levels[quantity]!;
 	return direction > 0 ? level : Math.min(level, table.cells[own.index]!.quantities[quantity]!.total);
 }

@@ -1,114 +1,105 @@
-import type { Block } from "./audit-blocks.ts";
-import { liesInside, soleHoldings } from "./attackers.ts";
-import type { OwnCell } from "./levels.ts";
-import { LinearProgram, type Solver } from "./solver.ts";
-import type { ProtectionTable } from "./table.ts";
+import { type Hold, PointSearch } from "./audit-search.ts";
+import type { AuditBlock } from "./audit-system.ts";
+import type { Solver } from "./solver.ts";
 
-/** Keeps a search from moving cells that it need not move. */
-const LEAST = 1e-6;
-const ROUNDING = 1e-6;
+/** An unknown that must stay uncertain, and by how much to each side. */
+export interface Target {
+	unknown: number;
+	up: number;
+	down: number;
+}
+
+/** What an owner knows of an unknown: that it is not less than the own part, or, being alone in it, its value. */
+export interface KnownPart {
+	owner: string;
+	amount: number;
+	alone: boolean;
+}
+
+export interface OwnersFound {
+	/** Unknowns that some owner finds too closely. */
+	failed: number[];
+	/** Those owners. */
+	objectors: string[];
+	/** How many times an owner's knowledge was tried. */
+	tried: number;
+	runs: number;
+}
+
+/** Below this share of the mean value a distance is rounding. */
+const STILL = 1e-8;
 
 /**
- * Tries the cells of one block for owners who know cells of it alone. For each own cell a point at its level is sought
- * that fits all that is shown; only an owner whose known cells moved on the way there could object, and for each such
- * owner a point is sought that leaves those cells where they are. A cell that its own single owner knows is not
- * protected from that owner. Where the owner has a part in the cell, only the upper side is asked: the level counts
+ * Tries the targets of one block against every owner's own knowledge. For each side of a target a point at its level is
+ * sought that fits all that is shown; only an owner who knows better of some unknown on the way there could object, and for
+ * each such owner a point is sought that this one cannot tell from the truth. An unknown that its own single owner knows is
+ * not protected from that owner. Where the owner has a part in the target, only the upper side is asked: the level counts
  * that owner's part as known already.
+ * @param partsOf who knows what of an unknown, the largest part first.
  */
-export function auditAttackers(
+export function tryOwners(
 	solver: Solver,
-	table: ProtectionTable,
-	block: Block,
-	own: readonly OwnCell[],
-	quantity: string,
-): { failed: number[]; linearPrograms: number } {
-	const column = new Map(block.cells.map((index, place) => [index, place]));
-	const holdings = soleHoldings(table);
-	const knower = new Map([...holdings].flatMap(([owner, cells]) => cells.map((index) => [index, owner] as const)));
-	const targets = own.filter((cell) => column.has(cell.index) && cell.levels[quantity]! > 0);
-	if (targets.length === 0 || !block.cells.some((index) => knower.has(index))) return { failed: [], linearPrograms: 0 };
-
+	block: AuditBlock,
+	targets: readonly Target[],
+	partsOf: (unknown: number) => readonly KnownPart[],
+): OwnersFound {
+	const column = new Map(block.unknowns.map((unknown, place) => [unknown, place]));
+	const parts = block.unknowns.map(partsOf);
+	const here = targets.filter(({ unknown }) => column.has(unknown));
+	const found: OwnersFound = { failed: [], objectors: [], tried: 0, runs: 0 };
+	if (here.length === 0 || parts.every((list) => list.length === 0)) return found;
 	const search = new PointSearch(solver, block);
-	const failed: number[] = [];
+	const knows = holdsByOwner(block, parts);
+	const objectors = new Set<string>();
+	const safe = (place: number, distance: number): boolean => {
+		const point = search.reach(place, distance);
+		if (!point) return true; // the intervals tell of that
+		const own = new Map(parts[place]!.map((part) => [part.owner, part]));
+		const against = [...objecting(block, parts, point)].filter((owner) => {
+			const part = own.get(owner);
+			if (part && (part.alone || distance < 0)) return false;
+			found.tried += 1;
+			return search.reach(place, distance, knows.get(owner)) === null;
+		});
+		for (const owner of against) objectors.add(owner);
+		return against.length === 0;
+	};
 	try {
-		for (const { index, levels } of targets) {
-			const place = column.get(index)!;
-			const level = levels[quantity]! / block.scale;
-			const sides = [level, -Math.min(level, block.values[place]! / block.scale)].filter((side) => side !== 0);
-			const safe = sides.every((side) => {
-				const moved = search.reach(place, side, []);
-				if (!moved) return false;
-				const owners = new Set(moved.flatMap((other) => knower.get(block.cells[other]!) ?? []));
-				owners.delete(knower.get(index) ?? "");
-				return [...owners].every((owner) => {
-					const known = holdings.get(owner)!;
-					if (side < 0 && known.some((cell) => liesInside(table, cell, index))) return true;
-					return (
-						search.reach(
-							place,
-							side,
-							known.flatMap((cell) => column.get(cell) ?? []),
-						) !== null
-					);
-				});
-			});
-			if (!safe) failed.push(index);
+		for (const { unknown, up, down } of here) {
+			const place = column.get(unknown)!;
+			const sides = [up, -down].filter((side) => side !== 0);
+			// Each side is tried, so that all who object are known at once.
+			if (sides.map((side) => safe(place, side)).includes(false)) found.failed.push(unknown);
 		}
-		return { failed, linearPrograms: search.runs };
+		return { ...found, objectors: [...objectors], runs: search.runs };
 	} finally {
 		search.dispose();
 	}
 }
 
-/** Looks for points that fit all that is shown, with one cell at a wanted distance and some cells held still. */
-class PointSearch {
-	runs = 0;
-	readonly #program: LinearProgram;
+/** Owners who know that this point is not the truth. */
+function objecting(block: AuditBlock, parts: readonly (readonly KnownPart[])[], point: readonly number[]): Set<string> {
+	const owners = new Set<string>();
+	point.forEach((distance, place) => {
+		if (Math.abs(distance) <= STILL * block.scale) return;
+		const seems = block.values[place]! + distance;
+		for (const { owner, amount, alone } of parts[place]!) {
+			if (alone || amount > seems + STILL * block.scale) owners.add(owner);
+			else break; // the largest part comes first
+		}
+	});
+	return owners;
+}
 
-	constructor(
-		solver: Solver,
-		readonly block: Block,
-	) {
-		// Two columns a cell, above and below the truth, as the search wants to know who moved at all.
-		const columns = block.values.flatMap((value) => [
-			{ cost: LEAST, lower: 0, upper: Infinity },
-			{ cost: LEAST, lower: 0, upper: value / block.scale },
-		]);
-		const rows = block.rows.map((row) => ({
-			...row,
-			columns: row.columns.flatMap((c) => [2 * c, 2 * c + 1]),
-			factors: row.factors.flatMap((f) => [f, -f]),
-		}));
-		this.#program = new LinearProgram(solver, columns, rows, "costs");
-	}
-
-	/** Places that moved, or null when the cell cannot get that far. */
-	reach(place: number, side: number, still: readonly number[]): number[] | null {
-		const goal = 2 * place + (side > 0 ? 0 : 1);
-		const program = this.#program;
-		const wanted = Math.abs(side);
-		for (const p of still) this.#hold(p, true);
-		program.setBounds(goal, 0, wanted);
-		program.setBounds(goal ^ 1, 0, 0);
-		program.setCost(goal, -1);
-		const outcome = program.solve();
-		this.runs += 1;
-		program.setCost(goal, LEAST);
-		this.#hold(place, false);
-		for (const p of still) this.#hold(p, false);
-		if (outcome.status !== "optimal") throw new Error(`the audit's search ended ${outcome.status}`);
-		const distance = (p: number) => outcome.values[2 * p]! - outcome.values[2 * p + 1]!;
-		if (Math.abs(distance(place)) < wanted * (1 - ROUNDING)) return null;
-		return this.block.cells.flatMap((_, p) => (Math.abs(distance(p)) > 1e-8 ? [p] : []));
-	}
-
-	#hold(place: number, still: boolean) {
-		const value = this.block.values[place]! / this.block.scale;
-		this.#program.setBounds(2 * place, 0, still ? 0 : Infinity);
-		this.#program.setBounds(2 * place + 1, 0, still ? 0 : value);
-	}
-
-	dispose() {
-		this.#program.dispose();
-	}
+function holdsByOwner(block: AuditBlock, parts: readonly (readonly KnownPart[])[]): Map<string, Hold[]> {
+	const holds = new Map<string, Hold[]>();
+	parts.forEach((list, column) => {
+		for (const { owner, amount, alone } of list) {
+			const hold = { column, below: alone ? 0 : Math.max(0, block.values[column]! - amount), exact: alone };
+			const known = holds.get(owner);
+			if (known) known.push(hold);
+			else holds.set(owner, [hold]);
+		}
+	});
+	return holds;
 }

@@ -48,7 +48,7 @@ export interface Choice {
 
 /** What is to be chosen, taken apart. Blocks do not depend on each other: they can be chosen in any order and thread. */
 export function planChoice(table: ProtectionTable, own: readonly OwnCell[], options: ChoiceOptions): Plan {
-	const attackers = [everybody(table), ...(options.ownersAttack ? soleOwners(table) : [])];
+	const attackers = [everybody(table, options.told), ...(options.ownersAttack ? soleOwners(table, options.told) : [])];
 	const loss = lossByCell(table, options.objective);
 	return { table, own, options, attackers, loss, blocks: blocksOfTable(table, options.blockCells) };
 }

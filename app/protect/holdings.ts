@@ -1,4 +1,4 @@
-import { ALL_CROPS, REGION } from "./survey-table.ts";
+import { ALL_CROPS, REGION } from "./codes.ts";
 import { cellKey } from "./table.ts";
 
 /** What one owner answered of one crop in one county, operations summed. */
@@ -10,6 +10,8 @@ export interface Holding {
 	amounts: Readonly<Record<string, number>>;
 	/** Stands for every answer that figures are made of, also those that no amount tells: alike only where all are. */
 	digest?: string;
+	/** Whether the owner allows publication. */
+	waived?: boolean;
 }
 
 /** The areas of a survey as `surveyTable` takes them. */

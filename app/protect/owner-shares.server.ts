@@ -1,7 +1,7 @@
 import { sql, type RawBuilder, type Transaction } from "kysely";
 import type { DB } from "#db/schema.ts";
 import type { OwnerShares } from "./owner-shares.ts";
-import { ALL_CROPS, REGION, RESPONDENTS } from "./survey-table.ts";
+import { ALL_CROPS, REGION, RESPONDENTS } from "./codes.ts";
 import type { OwnerShare } from "./table.ts";
 
 // The two lists multiply: each crop and all of them, at each level of area. One pass over the survey's facts.

@@ -1,10 +1,14 @@
 import { auditPattern, type AuditResult } from "./audit.ts";
 import { type BlockChoice, chooseBlock, type ChoiceOptions, joinChoices, type Plan, planChoice } from "./choice.ts";
+import { harden } from "./harden.ts";
 import { ownCells } from "./levels.ts";
+import type { RevisionGuard } from "./revision.ts";
 import { checkRules, type CellStatus, type OwnReason, type ProtectionRules } from "./rules.ts";
-import type { Objective } from "./loss.ts";
+import { type Objective, sumOver } from "./loss.ts";
+import { chooseShields } from "./shields.ts";
 import { loadSolver, type Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
+import { type Told, toldCells } from "./told.ts";
 
 export type { AuditFailure, AuditResult } from "./audit.ts";
 export { defaultRules } from "./rules.ts";
@@ -45,8 +49,16 @@ export interface ProtectProgress {
 
 const STRICT: ChoiceOptions = { ownersAttack: true, grandTotal: "last_resort", objective: "value" };
 
-/** What a release uses, with what differs for comparing with published patterns. */
-export type ProtectOptions = Partial<ChoiceOptions>;
+/** What a release uses, with what differs for comparing with published patterns. Plain data, so that threads can have it. */
+export interface ProtectOptions extends Partial<Omit<ChoiceOptions, "told">> {
+	/** Where earlier releases of the survey are public: what they keep back and what they tell. */
+	guard?: Pick<RevisionGuard, "keptBack" | "told">;
+	/** By quantity, keys of cells whose value other surveys' releases show. */
+	shownElsewhere?: ReadonlyMap<string, ReadonlySet<string>>;
+}
+
+/** What is to be decided, with the rules that its audit goes by. */
+export type ProtectionPlan = Plan & { rules: ProtectionRules };
 
 /**
  * Decides for every cell of one survey whether it is shown, and audits the decision.
@@ -68,24 +80,39 @@ export async function protect(
 }
 
 /** The first step: own cells, and the table taken apart into blocks, each to be chosen with `chooseBlock`. */
-export function planProtection(table: ProtectionTable, rules: ProtectionRules, options: ProtectOptions): Plan {
-	return planChoice(table, ownCells(table, checkRules(rules)), { ...STRICT, ...options });
+export function planProtection(
+	table: ProtectionTable,
+	rules: ProtectionRules,
+	options: ProtectOptions,
+): ProtectionPlan {
+	const { guard, shownElsewhere, ...shielding } = options;
+	const told = whatIsTold(table, rules, guard?.told, shownElsewhere);
+	const own = ownCells(table, checkRules(rules), guard?.keptBack);
+	return { ...planChoice(table, own, { ...STRICT, ...shielding, told }), rules };
 }
 
 /** The last step: one pattern from the choices of all blocks, audited. */
 export function concludeProtection(
 	solver: Solver,
-	plan: Plan,
+	plan: ProtectionPlan,
 	choices: readonly (BlockChoice | null)[],
 	watch: (phase: "joining" | "auditing") => void = () => {},
 ): Protection {
-	const { table, own, options } = plan;
+	const { table, own, options, rules } = plan;
 	watch("joining");
 	const choice = joinChoices(solver, plan, choices);
 	const reasons = new Map(own.map((cell) => [cell.index, cell.reasons]));
 	const everything = () =>
 		table.cells.flatMap((cell, index) => (cell.owners > 0 && !reasons.has(index) ? [index] : []));
-	const shields = choice?.shields ?? new Set(everything());
+	watch("auditing");
+	const { shields, audit } = harden(choice?.shields ?? new Set(everything()), {
+		table,
+		rules,
+		own,
+		useless: toldCells(options.told),
+		audit: (chosen) => auditPattern(solver, table, own, chosen, { ...options, rules }),
+		more: (wishes, given) => chooseShields(solver, table, wishes, options, given),
+	});
 	const pattern = new Map(
 		table.cells.map((cell, index): [string, CellDecision] => {
 			if (cell.owners === 0) return [cell.key, { status: "no_growers", reasons: [] }];
@@ -93,8 +120,24 @@ export function concludeProtection(
 			return [cell.key, { status: why.length > 0 ? "withheld" : "shown", reasons: why }];
 		}),
 	);
-	watch("auditing");
-	const audit = auditPattern(solver, table, own, shields, options);
-	const loss = choice && { objective: options.objective, lost: choice.lost, bound: choice.bound };
+	const loss = choice && {
+		objective: options.objective,
+		lost: sumOver([...reasons.keys(), ...shields], plan.loss),
+		bound: choice.bound,
+	};
 	return { pattern, audit, loss };
+}
+
+/** What the guard and other releases name by key, by position. */
+function whatIsTold(
+	table: ProtectionTable,
+	rules: ProtectionRules,
+	earlier: ReadonlySet<string> = new Set(),
+	elsewhere: ProtectOptions["shownElsewhere"] = new Map(),
+): Told {
+	const cells = table.quantities.map(({ key }) => {
+		const told = (cell: { key: string }) => earlier.has(cell.key) || elsewhere.get(key)?.has(cell.key);
+		return [key, new Set(table.cells.flatMap((cell, index) => (told(cell) ? [index] : [])))] as const;
+	});
+	return { cells: new Map(cells), publicFactor: rules.publicFactor };
 }

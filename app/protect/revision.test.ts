@@ -2,7 +2,7 @@ import { expect, test } from "vitest";
 import type { Holding } from "./holdings.ts";
 import { type Edition, guardRevision } from "./revision.ts";
 import { defaultRules } from "./rules.ts";
-import { REGION } from "./survey-table.ts";
+import { REGION } from "./codes.ts";
 
 const areas = [{ areaKey: "s", parentKey: REGION }, ...["c1", "c2"].map((areaKey) => ({ areaKey, parentKey: "s" }))];
 const holding = (owner: string, lb: number, areaKey = "c1", cropKey = "apple"): Holding => ({

@@ -4,6 +4,7 @@ import type { OwnCell } from "./levels.ts";
 import { lossByCell, type Objective } from "./loss.ts";
 import type { Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
+import { isTold, type Told, toldCells } from "./told.ts";
 
 export interface ShieldOptions {
 	/** Whether single owners of cells are attackers who know those cells. */
@@ -12,6 +13,8 @@ export interface ShieldOptions {
 	grandTotal: "last_resort" | "never";
 	/** `value` where it is not given */
 	objective?: Objective;
+	/** What is known from outside: cells of these cannot shield. */
+	told?: Told;
 }
 
 /** The cells on which the protection of one own cell, in one quantity and direction, rests. */
@@ -48,14 +51,15 @@ export function chooseShields(
 	const kept = new Set([...own.map(({ index }) => index), ...given]);
 	const hidden = new Set(kept);
 	const grand = table.cells.findIndex((c) => c.coordinates.every((code, d) => code === table.hierarchies[d]!.root));
-	const augmenter = new Augmenter(solver, table, weights, hidden, new Set(hidden.has(grand) ? [] : [grand]));
+	const locked = new Set([...toldCells(options.told), ...(hidden.has(grand) ? [] : [grand])]);
+	const augmenter = new Augmenter(solver, table, weights, hidden, locked);
 	const find = footingFinder(table, augmenter, options);
 	const hide = (cells: readonly number[]) => {
 		for (const index of cells) if (!hidden.has(index)) augmenter.hide(index);
 	};
 	try {
 		const footings: Footing[] = [];
-		for (const wish of wishesOf(table, own, weights)) {
+		for (const wish of wishesOf(table, own, weights, options.told)) {
 			let footing = find(wish, [], hide);
 			if (!footing && options.grandTotal === "last_resort" && augmenter.locked.has(grand)) {
 				augmenter.unlock(grand);
@@ -138,11 +142,12 @@ function footingFinder(table: ProtectionTable, augmenter: Augmenter, options: Sh
 	};
 }
 
-function wishesOf(table: ProtectionTable, own: readonly OwnCell[], weights: readonly number[]) {
+function wishesOf(table: ProtectionTable, own: readonly OwnCell[], weights: readonly number[], told: Told | undefined) {
 	const ordered = own.toSorted((a, b) => weights[b.index]! - weights[a.index]! || a.index - b.index);
 	return ordered.flatMap((cell) =>
-		table.quantities.flatMap(({ key }) => {
-			if (cell.levels[key] === 0) return [];
+		table.quantities.flatMap((quantity) => {
+			const { key } = quantity;
+			if (cell.levels[key] === 0 || isTold(told, quantity, cell.index)) return [];
 			const directions: (1 | -1)[] = table.cells[cell.index]!.quantities[key]!.total > 0 ? [1, -1] : [1];
 			return directions.map((direction) => ({ own: cell, quantity: key, direction }));
 		}),

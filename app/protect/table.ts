@@ -57,6 +57,16 @@ export interface ProtectionTable {
 	quantities: readonly Quantity[];
 	cells: readonly TableCell[];
 	equations: readonly Equation[];
+	/** Who holds what, where owners can be told apart. */
+	holdings?: readonly TableHolding[];
+}
+
+export interface TableHolding {
+	owner: string;
+	waived?: boolean;
+	amounts: Readonly<Record<string, number>>;
+	/** Positions of all cells that it is counted in, the smallest first. */
+	cells: readonly number[];
 }
 
 /** The key of a cell, from its coordinates in the table's order: `55001|apple`. */

@@ -66,6 +66,8 @@ export const ReleaseMethod = z.object({
 });
 export type ReleaseMethod = z.infer<typeof ReleaseMethod>;
 
+const Widths = z.object({ under1: z.number(), from1to2: z.number(), from2to5: z.number(), from5: z.number() });
+
 /** The audit as published with the release: how much is withheld and how safely, no withheld figure, no cell named. */
 export const ReleaseAudit = z.object({
 	passed: z.boolean(),
@@ -74,7 +76,18 @@ export const ReleaseAudit = z.object({
 	withheldForOwnSake: z.number().int(),
 	shields: z.number().int(),
 	narrowest: z.number().nullable(),
-	widths: z.object({ under1: z.number(), from1to2: z.number(), from2to5: z.number(), from5: z.number() }),
+	widths: Widths,
+	// Told since a later day.
+	byQuantity: z.array(z.object({ quantity: z.string(), narrowest: z.number().nullable(), widths: Widths })).default([]),
+	attackers: z
+		.array(
+			z.object({
+				kind: z.enum(["everybody", "owner", "line", "revision"]),
+				tried: z.number().int(),
+				failed: z.number().int(),
+			}),
+		)
+		.default([]),
 	linearPrograms: z.number().int(),
 	seconds: z.number(),
 	failures: z.array(z.object({ cellKey: z.string(), quantity: z.string().nullable(), kind: z.string() })),
