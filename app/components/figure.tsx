@@ -41,7 +41,9 @@ export function Figure(props: FigureProps) {
 				</span>
 			)}
 			{quartiles && (
-				<span className={quiet}>{t("figure.half", format.ends(quartiles.first, quartiles.third, measure))}</span>
+				<span className={quiet}>
+					{t("figure.half", { days: format.range(quartiles.first, quartiles.third, measure) })}
+				</span>
 			)}
 			{steadiness && (headline || steadiness !== "steady") && (
 				<span

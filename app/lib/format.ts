@@ -29,12 +29,12 @@ export function formatterFor(language: string, t: TFunction) {
 		new Intl.DateTimeFormat(locale, options).format(typeof value === "string" ? new Date(value) : value);
 	const quantity = (value: number, unit: Unit, decimals = 0) =>
 		t(`common:unit.${unit}`, { value: number(value, decimals), count: value });
-	/** "April 24"; a day that the year does not have stays a number. */
+	/** "April 24", never broken over two lines; a day that the year does not have stays a number. */
 	const dayOfSeason = (day: number, season: number) => {
 		const on = dateOfDay(season, day);
 		return on === null
 			? t("common:unit.day", { value: number(day, 0) })
-			: date(`${on}T12:00:00Z`, { day: "numeric", month: "long", timeZone: "UTC" });
+			: date(`${on}T12:00:00Z`, { day: "numeric", month: "long", timeZone: "UTC" }).replaceAll(" ", "\u00a0");
 	};
 	const figure = (value: number, { unit, decimals, season }: FigureShape) =>
 		unit === "day" ? dayOfSeason(value, season) : quantity(value, unit, decimals);

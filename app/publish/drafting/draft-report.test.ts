@@ -64,3 +64,14 @@ test("a release in which no crop has a network figure still makes a whole draft 
 	expect(draft.summary.en).toContain("noLead");
 	expect(draft.blocks.filter(({ type }) => type === "caution")).toHaveLength(3);
 });
+
+const day = (key: string): ReleaseMeasure => ({ ...measure(key), kind: "day", unit: "day", worse: null });
+
+test("a release led by days tells the earliest crop in sentences of days, and other days as figures", () => {
+	const days = [day("first_bloom"), day("petal_fall")];
+	const crops = [cell("apple", "network", 125), cell("plum", "network", 118)];
+	const made = draftReport({ ...input, measures: days, measure: days[0]!, crops, districts: [] });
+	expect(made.summary.en).toBe("lead 2025 plum [[first_bloom|plum|network]] day");
+	expect(JSON.stringify(made.blocks)).toContain("where day");
+	expect(made.blocks.filter(({ type }) => type === "figure")).toMatchObject([{ measure: "petal_fall", crop: "plum" }]);
+});

@@ -32,7 +32,7 @@ export function draftReport(input: DraftInput): ReportContent {
 		...about,
 		crop: worst.cropKey,
 		figure: referenceText({ measure: measure.key, crop: worst.cropKey, area: worst.areaKey }),
-		measure: measure.key,
+		measure: saidOf(measure),
 	};
 	const blocks: Unnamed[] = [
 		{ type: "heading", text: sentence("happened") },
@@ -86,12 +86,17 @@ function wherePart(
 	const days = rest.filter(({ kind }) => kind === "day");
 	const others = rest.filter(({ kind, worse }) => kind !== "day" && worse === measure.worse).slice(0, 2);
 	return [
-		{ type: "heading", text: sentence("where") },
+		{ type: "heading", text: sentence("where", { measure: saidOf(measure) }) },
 		{ type: "map", measure: measure.key, crop },
 		...widest,
 		{ type: "table", measure: measure.key, crop, kind: "district" },
 		...[...others, ...days].map((other) => ({ type: "figure" as const, measure: other.key, crop, area: "network" })),
 	];
+}
+
+/** Which sentences tell of a measure: those of days have their own, as no day is worse than another. */
+function saidOf({ key, kind }: ReleaseMeasure): string {
+	return kind === "day" ? "day" : key;
 }
 
 function both(say: { en: Say; es: Say }) {

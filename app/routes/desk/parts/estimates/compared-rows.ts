@@ -60,8 +60,11 @@ function toldOf({ value, standardError, lower, upper, quartiles }: Told): Told {
 
 /** What differs by rounding alone has not changed: sums can be added in another order. */
 function differs(drafted: Told, current: Told | null): boolean {
-	return (["value", "standardError"] as const).some((key) => {
-		const [before, after] = [drafted[key], current?.[key] ?? null];
+	const numbersOf = (told: Told | null) =>
+		[told?.value, told?.standardError, told?.quartiles?.first, told?.quartiles?.third].map((number) => number ?? null);
+	const now = numbersOf(current);
+	return numbersOf(drafted).some((before, at) => {
+		const after = now[at] ?? null;
 		if (before === null || after === null) return before !== after;
 		return Math.abs(after - before) > 1e-9 * Math.max(1, Math.abs(before));
 	});

@@ -59,7 +59,7 @@ export function FigureCell({ figure, measure, scale, to }: FigureProps & { scale
 			<FigureInterval figure={figure} measure={measure} scale={scale} />
 			{figure.quartiles && (
 				<span className="text-xs text-quiet">
-					{t("common:figure.half", format.ends(figure.quartiles.first, figure.quartiles.third, measure))}
+					{t("common:figure.half", { days: format.range(figure.quartiles.first, figure.quartiles.third, measure) })}
 				</span>
 			)}
 			<span className="text-xs text-quiet">
