@@ -71,11 +71,14 @@ export default [
 
 	route("desk/surveys/:surveyId/responses/:responseId/photos/:photoId", "routes/desk/photo.ts"),
 	route("desk/growers/list.csv", "routes/desk/growers-csv.ts"),
+	route("desk/growers/import/:importId/to-mend.csv", "routes/desk/growers-import-csv.ts"),
 	...prefix("desk", [
 		layout("routes/desk/layout.tsx", [
 			index("routes/desk/overview.tsx"),
 			route("growers", "routes/desk/growers.tsx"),
 			route("growers/chosen", "routes/desk/growers-chosen.tsx"),
+			route("growers/import", "routes/desk/growers-import.tsx"),
+			route("growers/import/:importId", "routes/desk/growers-import-file.tsx"),
 			route("growers/:operationId", "routes/desk/grower.tsx"),
 			route("surveys", "routes/desk/surveys.tsx"),
 			route("surveys/new", "routes/desk/survey-new.tsx"),

@@ -11,6 +11,7 @@ export const logActions = {
 		...(["language_set", "tried_anew", "exported"] as const),
 		...(["publication_allowed", "publication_disallowed"] as const),
 	],
+	import: ["finished", "undone"],
 	response: ["started", "submitted", "amended", "withdrawn"],
 	release: ["drafted", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
 	report: ["started", "submitted", "sent_back", "published"],

@@ -14,6 +14,7 @@ import { withdrawAnswer } from "./withdrawal.server.ts";
  */
 export async function forgetAnswers(trx: Trx, viewer: Grower, operationId: string): Promise<void> {
 	// Nobody who leaves is named in the log of what follows from it.
+	await trx.deleteFrom("collect.contact").where("operation_id", "=", operationId).execute();
 	const unnamed: Grower = { ...viewer, person: null };
 	for (const { surveyId, isOpen, responseId, definition } of await listAsked(trx, operationId)) {
 		const place = { surveyId, operationId };

@@ -25,6 +25,7 @@ export async function forgetOperation(
 	trx: Trx,
 	{ operationId, stateFips }: { operationId: string; stateFips: string },
 ) {
+	await forgetListWork(trx, operationId);
 	await trx.deleteFrom("directory.operation_pin").where("operation_id", "=", operationId).execute();
 	await trx
 		.updateTable("directory.planting")
@@ -44,6 +45,23 @@ export async function forgetOperation(
 		subjectId: operationId,
 		stateFips,
 	});
+}
+
+/** What the desk's work on the list keeps of an operation: rows of files, what undoing would put back, searches by name. */
+async function forgetListWork(trx: Trx, operationId: string): Promise<void> {
+	await trx
+		.updateTable("directory.import_row")
+		.set({ cells: null, entry: null, restore: null, problems: "[]" })
+		.where("operation_id", "=", operationId)
+		.execute();
+	await trx
+		.updateTable("directory.merge")
+		.set({ restore: null })
+		.where((eb) => eb.or([eb("operation_id", "=", operationId), eb("dropped_id", "=", operationId)]))
+		.execute();
+	await sql`delete from directory.saved_view v using directory.operation o where o.operation_id = ${operationId}
+		and length(v.query ->> 'q') > 2 and lower(v.query ->> 'q') = any (array[lower(o.name), lower(o.contact_name),
+			lower(o.email), lower(o.phone)])`.execute(trx);
 }
 
 /**

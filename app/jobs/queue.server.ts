@@ -14,6 +14,9 @@ export type JobPayloads = {
 	/** The files of photos that were taken away. */
 	erase_photos: { fileNames: string[] };
 	sweep_photos: Record<string, unknown>;
+	/** One step of reading a list of growers in from a file. */
+	import_growers: { importId: string; step: "read" | "check" | "write" | "undo" };
+	sweep_imports: Record<string, unknown>;
 };
 
 /** Queues work in the caller's transaction: neither the decision nor its job happens without the other. */

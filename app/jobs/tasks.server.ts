@@ -3,6 +3,7 @@ import { z } from "zod";
 import { languages } from "#app/i18n/language.ts";
 import { letterKinds } from "#app/mail/templates.ts";
 import { computeReleaseDraft } from "./compute-release-draft.server.ts";
+import { importGrowers, sweepImports } from "./import-growers.server.ts";
 import { erasePhotoFiles, sweepPhotos } from "./photos.server.ts";
 import { publishAtItsMinute } from "./publish-release.server.ts";
 import type { JobPayloads } from "./queue.server.ts";
@@ -31,7 +32,13 @@ export const tasks: Record<keyof JobPayloads, Task> = {
 	publish_release: task(z.object({ releaseDraftId: z.uuid() }), publishAtItsMinute),
 	erase_photos: task(z.object({ fileNames: z.array(z.string().regex(/^[0-9a-f]{32}$/)) }), erasePhotoFiles),
 	sweep_photos: task(z.looseObject({}), sweepPhotos),
+	import_growers: task(
+		z.object({ importId: z.uuid(), step: z.enum(["read", "check", "write", "undo"]) }),
+		importGrowers,
+	),
+	sweep_imports: task(z.looseObject({}), sweepImports),
 };
 
 /** What comes round by itself: the minute and hour in UTC. */
-export const crontab = "40 9 * * * sweep_photos ?max=1&fill=1d";
+export const crontab = `40 9 * * * sweep_photos ?max=1&fill=1d
+50 9 * * * sweep_imports ?max=1&fill=1d`;

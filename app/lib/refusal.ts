@@ -11,6 +11,7 @@ const statusOf = {
 	page_not_found: 404,
 	survey_not_found: 404,
 	operation_not_found: 404,
+	import_not_found: 404,
 	orchard_not_found: 404,
 	response_not_found: 404,
 	release_not_found: 404,

@@ -5,6 +5,7 @@ import type { Route } from "./+types/growers";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { answeredCondition, listLastAnswers } from "#app/collect/last-answers.server.ts";
+import { ButtonLink } from "#app/components/button.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Paging } from "#app/components/paging.tsx";
@@ -69,7 +70,15 @@ export default function Growers({ loaderData, actionData }: Route.ComponentProps
 	const { rows, total, page, pageCount, query, views, parts } = loaderData;
 	const { t } = useTranslation("growers");
 	return (
-		<Page title={t("desk:growers.title")} lead={t("desk:growers.lead")}>
+		<Page
+			title={t("desk:growers.title")}
+			lead={t("desk:growers.lead")}
+			actions={
+				<ButtonLink to={href("/desk/growers/import")} kind="secondary">
+					{t("list.import")}
+				</ButtonLink>
+			}
+		>
 			<ErrorSummary problems={actionData?.problems} labels={{ name: t("views.name") }} />
 			<GrowerFilters {...loaderData} />
 			<SavedViews views={views} parts={parts} values={actionData?.values} problems={actionData?.problems} />
