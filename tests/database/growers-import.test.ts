@@ -262,26 +262,26 @@ describe("a list in a file", () => {
 	});
 });
 
-describe("growers who are in the list already", () => {
-	async function listed(word: string) {
-		const email = `${word.toLowerCase()}@list.example`;
-		const operationId = await addOperation(owner, {
-			state: "19",
-			name: `${word} Old name`,
-			email,
-			contact: "Old contact",
-		});
-		return { email, operationId };
-	}
-	const contact = async (operationId: string) =>
-		(
-			await owner.query(
-				`select o.name, o.contact_name, o.phone, json_agg(json_build_array(crop_key, bearing_trees) order by crop_key) as trees
-				from directory.operation o join directory.planting using (operation_id) where operation_id = $1 group by 1, 2, 3`,
-				[operationId],
-			)
-		).rows[0];
+async function listed(word: string) {
+	const email = `${word.toLowerCase()}@list.example`;
+	const operationId = await addOperation(owner, {
+		state: "19",
+		name: `${word} Old name`,
+		email,
+		contact: "Old contact",
+	});
+	return { email, operationId };
+}
+const contact = async (operationId: string) =>
+	(
+		await owner.query(
+			`select o.name, o.contact_name, o.phone, json_agg(json_build_array(crop_key, bearing_trees) order by crop_key) as trees
+			from directory.operation o join directory.planting using (operation_id) where operation_id = $1 group by 1, 2, 3`,
+			[operationId],
+		)
+	).rows[0];
 
+describe("growers who are in the list already", () => {
 	test("are found by address or by name and county, and changed to what the file says and no more", async () => {
 		const word = newWord();
 		const { email, operationId } = await listed(word);
