@@ -196,6 +196,7 @@ export interface CollectReleaseDraft {
   drafted_at: Generated<Timestamp>;
   drafted_by: string;
   method: Json | null;
+  progress: Json | null;
   publish_at: Timestamp | null;
   release_draft_id: Generated<string>;
   release_id: string | null;

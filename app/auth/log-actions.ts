@@ -13,7 +13,7 @@ export const logActions = {
 	],
 	import: ["finished", "undone"],
 	response: ["started", "submitted", "amended", "withdrawn"],
-	release: ["drafted", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
+	release: ["drafted", "cancelled", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
 	report: ["started", "submitted", "sent_back", "published"],
 } as const;
 

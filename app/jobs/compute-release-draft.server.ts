@@ -10,7 +10,7 @@ import type { OwnerShares } from "#app/protect/owner-shares.ts";
 import { ALL_CROPS } from "#app/protect/codes.ts";
 import type { Holding } from "#app/protect/holdings.ts";
 import { listHoldings } from "#app/protect/holdings.server.ts";
-import { cellKey } from "#app/protect/protect.ts";
+import { cellKey, type Protection, type ProtectionTable } from "#app/protect/protect.ts";
 import { protectInThread } from "#app/protect/protect-thread.server.ts";
 import { surveyTable } from "#app/protect/survey-table.ts";
 import { type DraftCell, ReleaseAudit, type ReleaseMethod, ReleaseRules } from "#app/release/draft.ts";
@@ -18,6 +18,7 @@ import { draftChecksum } from "#app/release/publish.server.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
 import type { FrameStratum, KeptTally } from "#app/tally/tally.ts";
 import { assembleCells } from "./assemble-cells.ts";
+import { DraftNotWanted, gapOf, watchDraft } from "./draft-watch.server.ts";
 import { type SensitiveMeasures, sensitiveMeasures } from "./sensitive-measures.ts";
 
 type Inputs = {
@@ -56,7 +57,8 @@ export async function computeReleaseDraft(
 		sensitiveKeys: inputs.sensitive.counted,
 		holdings: inputs.holdings,
 	});
-	const protection = await protectInThread(table, rules);
+	const protection = await protectWatched(releaseDraftId, table, rules, transact);
+	if (!protection) return;
 	const seconds = (performance.now() - started) / 1000;
 	const { estimates, joins } = estimateSurvey({
 		measures: method.measures,
@@ -66,9 +68,30 @@ export async function computeReleaseDraft(
 		cutOffs,
 	});
 	const cells = assembleCells({ method, frameCells: inputs.frameCells, shares, protection, estimates });
-	const audit = ReleaseAudit.parse({ ...protection.audit, seconds });
+	const audit = ReleaseAudit.parse({
+		...protection.audit,
+		seconds,
+		gap: protection.loss && gapOf(protection.loss),
+	});
 	await transact({ kind: "network" }, (trx) => writeDraft(trx, releaseDraftId, { ...method, joins }, audit, cells));
 	log.info({ releaseDraftId, cells: cells.length, passed: audit.passed, seconds }, "release drafted");
+}
+
+/** undefined when nobody waits for the draft any more. */
+async function protectWatched(
+	releaseDraftId: string,
+	table: ProtectionTable,
+	rules: ReleaseRules,
+	transact: typeof scopedTransaction,
+): Promise<Protection | undefined> {
+	await using watch = watchDraft(releaseDraftId, transact);
+	try {
+		return await protectInThread(table, rules, {}, watch);
+	} catch (error) {
+		if (!(error instanceof DraftNotWanted)) throw error;
+		log.info({ releaseDraftId }, "release draft not wanted any more");
+		return undefined;
+	}
 }
 
 async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | undefined> {

@@ -15,6 +15,12 @@ export interface ThreadOptions {
 
 const MOST_THREADS = 2;
 
+/** A thread does not inherit the reading of TypeScript from the process that starts it, be it tsx or vitest. */
+const beginning = `
+	import(${JSON.stringify(import.meta.resolve("tsx/esm/api"))})
+		.then(({ register }) => register())
+		.then(() => import(${JSON.stringify(new URL("./protect-worker.server.ts", import.meta.url))}));`;
+
 /**
  * `protect` in threads of its own, so that the caller's stays free for requests and other jobs. Blocks go to whichever
  * thread is free; as no block depends on another, the result is the same as in one thread.
@@ -68,10 +74,7 @@ class Crew {
 	}
 
 	#hire() {
-		const worker = new Worker(new URL("./protect-worker.mjs", import.meta.url), {
-			workerData: this.start,
-			execArgv: [],
-		});
+		const worker = new Worker(beginning, { eval: true, workerData: this.start, execArgv: [] });
 		this.#workers.push(worker);
 		worker.on("message", (answer: ThreadAnswer) => this.#hear(worker, answer));
 		worker.on("error", this.fail);

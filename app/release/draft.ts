@@ -90,9 +90,21 @@ export const ReleaseAudit = z.object({
 		.default([]),
 	linearPrograms: z.number().int(),
 	seconds: z.number(),
+	/** By how much more is lost at most than any safe choice must lose, as a share; 0 is proven least, null is not known. */
+	gap: z.number().nullable().default(null),
 	failures: z.array(z.object({ cellKey: z.string(), quantity: z.string().nullable(), kind: z.string() })),
 });
 export type ReleaseAudit = z.infer<typeof ReleaseAudit>;
+
+/** How far the job is that makes a draft. */
+export const DraftProgress = z.object({
+	phase: z.enum(["choosing", "joining", "auditing"]),
+	/** parts of the table whose shields are chosen */
+	done: z.number().int(),
+	total: z.number().int(),
+	gap: z.number().nullable(),
+});
+export type DraftProgress = z.infer<typeof DraftProgress>;
 
 export const Steadiness = z.enum(["steady", "care", "rough"]);
 

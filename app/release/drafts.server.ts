@@ -2,7 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { Words } from "#app/lib/words.ts";
-import { type DraftCell, DraftFigure, ReleaseAudit, ReleaseMethod, ReleaseRules } from "./draft.ts";
+import { type DraftCell, DraftFigure, DraftProgress, ReleaseAudit, ReleaseMethod, ReleaseRules } from "./draft.ts";
 
 export type DraftStatus =
 	| "queued"
@@ -14,7 +14,9 @@ export type DraftStatus =
 	/** Published. */
 	| "approved"
 	| "rejected"
-	| "superseded";
+	| "superseded"
+	/** Stopped by an associate while it was being made. */
+	| "cancelled";
 
 /** Drafts of which a newer one, or an answer that is taken back, takes the place. */
 export const waitingStatuses = ["queued", "failed", "audit_failed", "audited", "scheduled"] as const;
@@ -35,6 +37,7 @@ export type Draft = {
 	rules: ReleaseRules;
 	method: ReleaseMethod | null;
 	audit: ReleaseAudit | null;
+	progress: DraftProgress | null;
 	checksum: string | null;
 	releaseId: string | null;
 	publishAt: Date | null;
@@ -117,7 +120,7 @@ export async function findLatestDraft(trx: Trx, viewer: Associate, surveyId: str
 /** Drafts for the coordinator, those that wait for a decision first. */
 export async function listDrafts(trx: Trx, _viewer: Coordinator): Promise<Draft[]> {
 	const rows = await selectDrafts(trx)
-		.where("d.status", "!=", "superseded")
+		.where("d.status", "not in", ["superseded", "cancelled"])
 		.orderBy(sql`d.status in ('audited', 'scheduled')`, "desc")
 		.orderBy("d.drafted_at", "desc")
 		.limit(200)
@@ -200,6 +203,7 @@ function selectDrafts(trx: Trx) {
 			"d.rules",
 			"d.method",
 			"d.audit",
+			"d.progress",
 			"d.checksum",
 			"d.release_id",
 			"d.publish_at",
@@ -225,6 +229,7 @@ function toDraft(row: DraftRow): Draft {
 		rules: ReleaseRules.parse(row.rules),
 		method: row.method === null ? null : ReleaseMethod.parse(row.method),
 		audit: row.audit === null ? null : ReleaseAudit.parse(row.audit),
+		progress: row.progress === null ? null : DraftProgress.parse(row.progress),
 		checksum: row.checksum,
 		releaseId: row.release_id,
 		publishAt: row.publish_at,

@@ -5,6 +5,8 @@ import { Words } from "#app/lib/words.ts";
 
 /** What is still to do for a release: `none` has no draft yet, the others are the newest draft's own status. */
 export type ReleaseWork = "none" | "failed" | "audit_failed" | "audited" | "rejected";
+/** A draft that was stopped is as none. */
+const work = sql<ReleaseWork>`coalesce(nullif(newest.status, 'cancelled'), 'none')`;
 
 /** Closed surveys of the viewer's states whose release waits for somebody, newest season first. */
 export async function listReleaseWork(trx: Trx, viewer: Associate) {
@@ -26,8 +28,8 @@ export async function listReleaseWork(trx: Trx, viewer: Associate) {
 		)
 		.where("s.opened_at", "is not", null)
 		.where(sql<boolean>`(s.closed_at is not null or s.closes_at <= now())`)
-		.where(sql<boolean>`coalesce(newest.status, 'none') in ('none', 'failed', 'audit_failed', 'audited', 'rejected')`)
-		.select(["s.survey_id", "s.season", "s.title", sql<ReleaseWork>`coalesce(newest.status, 'none')`.as("work")])
+		.where(sql<boolean>`${work} in ('none', 'failed', 'audit_failed', 'audited', 'rejected')`)
+		.select(["s.survey_id", "s.season", "s.title", work.as("work")])
 		.orderBy("s.season", "desc")
 		.orderBy("s.created_at", "desc")
 		.execute();

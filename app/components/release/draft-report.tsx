@@ -38,6 +38,7 @@ export type DraftReportProps = {
 		narrowest: number | null;
 		linearPrograms: number;
 		seconds: number;
+		gap: number | null;
 		failures: unknown[];
 	};
 	rules: Record<"minimumOwners" | "dominancePercent" | "steadyCv" | "careCv" | "steadyDays" | "careDays", number>;
@@ -105,6 +106,17 @@ function AuditFacts({ audit, rules, asked, answered, setAside, joinCount, checks
 						shields: format.number(audit.shields),
 					}),
 				},
+				...(audit.gap === null
+					? []
+					: [
+							{
+								term: t("audit.least"),
+								detail:
+									audit.gap === 0
+										? t("audit.leastProven")
+										: t("audit.leastWithin", { percent: format.number(100 * audit.gap, 1) }),
+							},
+						]),
 				{
 					term: t("audit.rules"),
 					detail: t("audit.rulesDetail", {

@@ -5,7 +5,9 @@ import { z } from "zod";
 import type { Route } from "./+types/release";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import { requireAssociate } from "#app/auth/guard.server.ts";
+import type { Trx } from "#app/auth/scope.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
 import { Confirm } from "#app/components/confirm.tsx";
@@ -24,8 +26,10 @@ import { refusal } from "#app/lib/refusal.ts";
 import type { Words } from "#app/lib/words.ts";
 import { ReasonForm } from "#app/release/decision.schema.ts";
 import { DraftChoice, viewDraft } from "#app/release/draft-view.server.ts";
+import { cancelDraft } from "#app/release/draft-progress.server.ts";
 import { createDraft, findLatestDraft, findNewestEdition, findWithdrawal } from "#app/release/drafts.server.ts";
 import { draftReportProps } from "./parts/draft-report-props.ts";
+import { DraftUnderWay } from "./parts/draft-under-way.tsx";
 
 export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
@@ -43,13 +47,23 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 }
 
 /** A first draft brings no reason along; one of a revision does. */
-const DraftForm = z.union([ReasonForm.extend({ step: z.literal("revise") }), z.object({ step: z.undefined() })]);
+const DraftForm = z.union([
+	ReasonForm.extend({ step: z.literal("revise") }),
+	z.object({ step: z.literal("cancel") }),
+	z.object({ step: z.undefined() }),
+]);
 
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
 	const form = parseForm(DraftForm, await request.formData());
 	if (!form.ok) return data({ values: form.values, problems: form.problems, refused: null }, { status: 400 });
 	const { value } = form;
+	if (value.step === "cancel") {
+		const stopped = await desk.transaction((trx) => stopDraft(trx, desk.viewer, params.surveyId));
+		if (stopped === "not_found") throw refusal("survey_not_found");
+		context.get(sessionContext).flash("toast", { key: `release:toast.${stopped}` });
+		return redirect(href("/desk/surveys/:surveyId/release", params), 303);
+	}
 	const reason = value.step === "revise" ? { en: value.reasonEn, es: value.reasonEs } : null;
 	const result = await desk.transaction(async (trx) => {
 		if (!(await findSurvey(trx, desk.viewer, params.surveyId))) return { outcome: "not_found" } as const;
@@ -66,6 +80,17 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 		return data({ values: form.values, problems: [], refused: result.outcome }, { status: 409 });
 	context.get(sessionContext).flash("toast", { key: "release:toast.queued" });
 	return redirect(href("/desk/surveys/:surveyId/release", params), 303);
+}
+
+/** Stopping twice, or what has ended meanwhile, changes nothing. */
+async function stopDraft(trx: Trx, viewer: Associate, surveyId: string) {
+	if (!(await findSurvey(trx, viewer, surveyId))) return "not_found";
+	const stopped = await cancelDraft(trx, viewer, surveyId);
+	if (stopped.outcome === "cancelled") {
+		const subject = { subjectKind: "release_draft", subjectId: stopped.releaseDraftId, detail: { surveyId } };
+		await logEvent(trx, { personId: viewer.personId, action: "release.cancelled", ...subject });
+	}
+	return stopped.outcome;
 }
 
 export default function ReleasePage({ loaderData, actionData }: Route.ComponentProps) {
@@ -177,6 +202,7 @@ function DraftPart({ view, withdrawn }: DraftPartProps) {
 					</p>
 				)}
 			</Notice>
+			{(waiting || draft.status === "failed") && <DraftUnderWay progress={waiting ? draft.progress : null} />}
 			{report && (
 				<>
 					<p className="text-attention font-bold">{draft.status === "approved" ? null : t("estimates.mark")}</p>

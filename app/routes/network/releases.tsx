@@ -34,6 +34,7 @@ const tones = {
 	approved: "good",
 	rejected: "neutral",
 	superseded: "neutral",
+	cancelled: "neutral",
 } as const;
 
 export default function Releases({ loaderData }: Route.ComponentProps) {
