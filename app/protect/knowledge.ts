@@ -4,6 +4,8 @@ import { relationsAmong } from "./relations.ts";
 import type { Row } from "./solver.ts";
 import type { ProtectionTable, Quantity } from "./table.ts";
 
+const NONE: NonNullable<Attacker["bounds"]> = [];
+
 /**
  * What attackers can write down about the cells of a scope in one quantity, as distances from the truth; cells outside
  * the scope stand still. Questions are asked in multiples of their level, so ends and sides are given in levels.
@@ -17,6 +19,7 @@ export class Knowledge {
 	readonly #values: Float64Array;
 	readonly #place: ReadonlyMap<number, number>;
 	readonly #places = new Map<Attacker, ReadonlySet<number>>();
+	readonly #bounds = new Map<object, ReadonlyMap<number, { lower: number; upper: number }[]>>();
 
 	/** @param certain by place: 1 where the cell is withheld whatever is chosen */
 	constructor(
@@ -67,14 +70,27 @@ export class Knowledge {
 	ends({ attacker, level, place, direction }: Question, p: number): [below: number, above: number] {
 		let below = this.#values[p]!;
 		let above = Infinity;
-		for (const bound of attacker.bounds ?? []) {
-			if (bound.quantity !== this.quantity.key || this.#place.get(bound.cell) !== p) continue;
+		for (const bound of this.#boundsOf(attacker).get(p) ?? []) {
 			below = Math.max(0, Math.min(below, this.#values[p]! - bound.lower));
 			above = Math.max(0, Math.min(above, bound.upper - this.#values[p]!));
 		}
 		if (p === place && direction > 0) above = Math.min(above, level);
 		if (p === place && direction < 0) below = Math.min(below, level);
 		return [below / level, above / level];
+	}
+
+	#boundsOf(attacker: Attacker): ReadonlyMap<number, { lower: number; upper: number }[]> {
+		const list = attacker.bounds ?? NONE;
+		const known = this.#bounds.get(list);
+		if (known) return known;
+		const byPlace = new Map<number, { lower: number; upper: number }[]>();
+		for (const bound of list) {
+			const place = this.#place.get(bound.cell);
+			if (bound.quantity !== this.quantity.key || place === undefined) continue;
+			byPlace.set(place, [...(byPlace.get(place) ?? []), bound]);
+		}
+		this.#bounds.set(list, byPlace);
+		return byPlace;
 	}
 
 	/** Bounds of every place for a question, in levels. */

@@ -76,6 +76,7 @@ export class Separator {
 	readonly #knowers = new Map<number, Attacker[]>();
 	/** attackers who know more than cells and what everybody knows: no possible table of another's tells of theirs */
 	readonly #apart: Attacker[];
+	readonly #toldBy = new Map<object, string>();
 	/** where the next questions begin, so that every target has its turn */
 	#next = 0;
 
@@ -186,8 +187,18 @@ export class Separator {
 		return seen;
 	}
 
+	/** By content: each attacker may hold a list of its own of what everybody knows. */
 	#sameBounds(a: Attacker, b: Attacker): boolean {
-		return a === b || (a.bounds === b.bounds && a.relations === b.relations);
+		return (
+			a === b || (this.#told(a.bounds) === this.#told(b.bounds) && this.#told(a.relations) === this.#told(b.relations))
+		);
+	}
+
+	#told(list: Attacker["bounds"] | Attacker["relations"]): string {
+		if (!list || list.length === 0) return "";
+		const known = this.#toldBy.get(list) ?? JSON.stringify(list);
+		this.#toldBy.set(list, known);
+		return known;
 	}
 
 	#fits({ moved, by }: Witness, withheld: Float64Array, whole: boolean): boolean {
