@@ -106,9 +106,9 @@ const bloom: Season = {
 	closedAt: at("2025-06-20", "17:06"),
 	reminders: [at("2025-06-09", "8:40")],
 	late: -9,
-	lightBloom: 0.7,
+	lightBloom: 0.75,
 	release: { draftedAt: at("2025-06-30", "10:10"), publishedAt: at("2025-07-02", "9:30"), report: null },
-	answering: 0.59,
+	answering: 0.67,
 };
 
 /** The demo's surveys in the order of their days: two harvests, the bloom between them, and one that is being asked. */
