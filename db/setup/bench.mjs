@@ -31,7 +31,8 @@ try {
 	// Only the pages are measured in a browser.
 	const parts = wanted.filter((word) => !word.startsWith("-"));
 	const looks = parts.length === 0 || parts.includes("pages");
-	if (looks) await ensureBuild();
+	// The built pages are also asked for while shields are chosen.
+	if (looks || parts.includes("protect")) await ensureBuild();
 	const browser = looks ? { CHROMIUM_PATH: await ensureChromium() } : {};
 	const env = { ...process.env, ...browser, ...(await addresses()) };
 	const args = ["--import", "tsx", "tests/bench/bench.ts", ...wanted];
