@@ -110,6 +110,7 @@ export default [
 			route("reports", "routes/network/reports.tsx"),
 			route("reports/:reportId", "routes/network/report.tsx"),
 			route("access", "routes/network/access.tsx"),
+			route("settings", "routes/network/settings.tsx"),
 			route("log", "routes/network/log.tsx"),
 		]),
 	]),

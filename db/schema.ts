@@ -217,6 +217,15 @@ export interface CollectReleaseDraftCell {
   status: string;
 }
 
+export interface CollectReleaseDraftHolding {
+  amounts: Json;
+  county_fips: string;
+  crop_key: string;
+  digest: string;
+  owner_id: string;
+  release_draft_id: string;
+}
+
 export interface CollectReminder {
   cancelled_at: Timestamp | null;
   remind_at: Timestamp;
@@ -368,6 +377,13 @@ export interface DirectoryMerge {
   restore: Json | null;
   undone_at: Timestamp | null;
   undone_by: string | null;
+}
+
+export interface DirectoryNetworkRules {
+  network_rules_id: Generated<number>;
+  rules: Json;
+  set_at: Generated<Timestamp>;
+  set_by: string;
 }
 
 export interface DirectoryOperation {
@@ -558,6 +574,7 @@ export interface DB {
   "collect.photo": CollectPhoto;
   "collect.release_draft": CollectReleaseDraft;
   "collect.release_draft_cell": CollectReleaseDraftCell;
+  "collect.release_draft_holding": CollectReleaseDraftHolding;
   "collect.reminder": CollectReminder;
   "collect.response": CollectResponse;
   "collect.submission": CollectSubmission;
@@ -572,6 +589,7 @@ export interface DB {
   "directory.import": DirectoryImport;
   "directory.import_row": DirectoryImportRow;
   "directory.merge": DirectoryMerge;
+  "directory.network_rules": DirectoryNetworkRules;
   "directory.operation": DirectoryOperation;
   "directory.operation_pin": DirectoryOperationPin;
   "directory.owner": DirectoryOwner;

@@ -14,6 +14,7 @@ export const logActions = {
 	import: ["finished", "undone"],
 	response: ["started", "submitted", "amended", "withdrawn"],
 	release: ["drafted", "cancelled", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
+	settings: ["changed"],
 	report: ["started", "submitted", "sent_back", "published"],
 } as const;
 

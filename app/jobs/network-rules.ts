@@ -2,7 +2,7 @@ import { defaultCutOffs } from "#app/estimate/steadiness.ts";
 import { defaultRules } from "#app/protect/rules.ts";
 import type { ReleaseRules } from "#app/release/draft.ts";
 
-/** The network's settings, frozen with each release: who counts as too few, as dominating, and what is steady. */
+/** What a network starts with: who counts as too few, as dominating, and what is steady. Coordinators change it. */
 export const networkRules: ReleaseRules = {
 	minimumOwners: defaultRules.minimumOwners,
 	dominancePercent: defaultRules.dominancePercent,

@@ -19,7 +19,7 @@ import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { networkRules } from "#app/jobs/network-rules.ts";
+import { readNetworkRules } from "#app/jobs/network-rules.server.ts";
 import { queueJob } from "#app/jobs/queue.server.ts";
 import { type FormValues, parseForm, type Problem } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -47,10 +47,10 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 }
 
 /** A first draft brings no reason along; one of a revision does. */
-const DraftForm = z.union([
-	ReasonForm.extend({ step: z.literal("revise") }),
+const DraftForm = z.discriminatedUnion("step", [
+	z.object({ step: z.literal("draft") }),
 	z.object({ step: z.literal("cancel") }),
-	z.object({ step: z.undefined() }),
+	ReasonForm.extend({ step: z.literal("revise") }),
 ]);
 
 export async function action({ context, params, request }: Route.ActionArgs) {
@@ -67,7 +67,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const reason = value.step === "revise" ? { en: value.reasonEn, es: value.reasonEs } : null;
 	const result = await desk.transaction(async (trx) => {
 		if (!(await findSurvey(trx, desk.viewer, params.surveyId))) return { outcome: "not_found" } as const;
-		const made = await createDraft(trx, desk.viewer, params.surveyId, networkRules, reason);
+		const made = await createDraft(trx, desk.viewer, params.surveyId, await readNetworkRules(trx), reason);
 		if (made.outcome !== "drafted") return made;
 		const { releaseDraftId } = made;
 		await queueJob(trx, "compute_release_draft", { releaseDraftId }, { maxAttempts: 3 });
@@ -125,6 +125,8 @@ function DraftButton({ again }: { again: boolean }) {
 				title={t("draft.confirmTitle")}
 				body={t("draft.confirmBody")}
 				confirmLabel={t("draft.confirm")}
+				name="step"
+				value="draft"
 			/>
 		</Form>
 	);
@@ -193,6 +195,9 @@ function DraftPart({ view, withdrawn }: DraftPartProps) {
 					})}
 				</output>
 				{withdrawn && <p className="mt-2">{wordsIn(withdrawn, i18n.language)}</p>}
+				{draft.revisionReason && (
+					<p className="mt-2">{t("revision.because", { reason: wordsIn(draft.revisionReason, i18n.language) })}</p>
+				)}
 				{draft.decisionNote && <p className="mt-2">{t("status.note", { note: draft.decisionNote })}</p>}
 				{state === "approved" && (
 					<p className="mt-3">

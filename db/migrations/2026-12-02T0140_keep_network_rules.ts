@@ -1,0 +1,18 @@
+import { type Kysely, sql } from "kysely";
+
+// The network's settings: who counts as too few, as dominating, and what is steady. Every change is a row of its own, so that
+// it can be told which held when.
+export async function up(db: Kysely<unknown>): Promise<void> {
+	await sql`create table directory.network_rules (
+		network_rules_id integer primary key generated always as identity,
+		rules jsonb not null,
+		set_by uuid not null references auth.person on delete restrict,
+		set_at timestamptz not null default now()
+	)`.execute(db);
+	await sql`alter table directory.network_rules enable row level security`.execute(db);
+	// No secret: every release tells those that it was made with.
+	await sql`create policy everybody on directory.network_rules to tallygrove_app using (true) with check (true)`.execute(
+		db,
+	);
+	await sql`grant select, insert on directory.network_rules to tallygrove_app`.execute(db);
+}
