@@ -1,37 +1,17 @@
 import { sql } from "kysely";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
-import { FormDefinition } from "#app/collect/form.ts";
-import { Words } from "#app/lib/words.ts";
-import { listAreas } from "#app/directory/areas.server.ts";
 import { estimateSurvey } from "#app/estimate/survey.ts";
 import { log } from "#app/lib/log.server.ts";
-import { listOwnerShares } from "#app/protect/owner-shares.server.ts";
-import type { OwnerShares } from "#app/protect/owner-shares.ts";
-import { ALL_CROPS } from "#app/protect/codes.ts";
-import type { Holding } from "#app/protect/holdings.ts";
-import { listHoldings } from "#app/protect/holdings.server.ts";
-import { cellKey, type Protection, type ProtectionTable } from "#app/protect/protect.ts";
+import type { Protection, ProtectionTable } from "#app/protect/protect.ts";
 import { protectInThread } from "#app/protect/protect-thread.server.ts";
+import { guardRevision } from "#app/protect/revision.ts";
 import { surveyTable } from "#app/protect/survey-table.ts";
-import { type DraftCell, ReleaseAudit, type ReleaseMethod, ReleaseRules } from "#app/release/draft.ts";
+import { type DraftCell, ReleaseAudit, type ReleaseMethod } from "#app/release/draft.ts";
 import { draftChecksum } from "#app/release/publish.server.ts";
-import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
-import type { FrameStratum, KeptTally } from "#app/tally/tally.ts";
 import { assembleCells } from "./assemble-cells.ts";
+import { keepBasis } from "./draft-basis.server.ts";
+import { type DraftInputs, readInputs } from "./draft-inputs.server.ts";
 import { DraftNotWanted, gapOf, watchDraft } from "./draft-watch.server.ts";
-import { type SensitiveMeasures, sensitiveMeasures } from "./sensitive-measures.ts";
-
-type Inputs = {
-	rules: ReleaseRules;
-	method: Omit<ReleaseMethod, "joins">;
-	tallies: KeptTally[];
-	frame: (FrameStratum & { cropKey: string })[];
-	frameCells: ReadonlySet<string>;
-	baseKeys: string[];
-	sensitive: SensitiveMeasures;
-	shares: OwnerShares[];
-	holdings: Holding[];
-};
 
 /**
  * Makes a draft's cells: tally, estimate, protect, audit. Reading and writing are two short transactions, with the long
@@ -47,17 +27,16 @@ export async function computeReleaseDraft(
 	const { rules, method, tallies, frame, shares } = inputs;
 	const { steadyCv: steady, careCv: care, steadyDays, careDays } = rules;
 	const cutOffs = { steady, care, steadyDays, careDays };
-	const areas = method.areas.flatMap(({ areaKey, parentKey }) => (parentKey === null ? [] : [{ areaKey, parentKey }]));
 	const started = performance.now();
 	const table = surveyTable({
-		areas,
+		areas: treeOf(method.areas),
 		cropKeys: method.cropKeys,
 		shares,
 		baseKeys: inputs.baseKeys,
 		sensitiveKeys: inputs.sensitive.counted,
 		holdings: inputs.holdings,
 	});
-	const protection = await protectWatched(releaseDraftId, table, rules, transact);
+	const protection = await protectWatched(releaseDraftId, table, inputs, transact);
 	if (!protection) return;
 	const seconds = (performance.now() - started) / 1000;
 	const { estimates, joins } = estimateSurvey({
@@ -73,7 +52,10 @@ export async function computeReleaseDraft(
 		seconds,
 		gap: protection.loss && gapOf(protection.loss),
 	});
-	await transact({ kind: "network" }, (trx) => writeDraft(trx, releaseDraftId, { ...method, joins }, audit, cells));
+	await transact({ kind: "network" }, async (trx) => {
+		const written = await writeDraft(trx, releaseDraftId, { ...method, joins }, audit, cells);
+		if (written) await keepBasis(trx, releaseDraftId, inputs.holdings);
+	});
 	log.info({ releaseDraftId, cells: cells.length, passed: audit.passed, seconds }, "release drafted");
 }
 
@@ -81,12 +63,15 @@ export async function computeReleaseDraft(
 async function protectWatched(
 	releaseDraftId: string,
 	table: ProtectionTable,
-	rules: ReleaseRules,
+	{ rules, method, earlier, holdings }: DraftInputs,
 	transact: typeof scopedTransaction,
 ): Promise<Protection | undefined> {
+	const quantities = table.quantities.map(({ key }) => key);
+	const areas = treeOf(method.areas);
+	const guard = earlier.length > 0 ? guardRevision({ areas, quantities, rules, earlier, holdings }) : undefined;
 	await using watch = watchDraft(releaseDraftId, transact);
 	try {
-		return await protectInThread(table, rules, {}, watch);
+		return await protectInThread(table, rules, { guard }, watch);
 	} catch (error) {
 		if (!(error instanceof DraftNotWanted)) throw error;
 		log.info({ releaseDraftId }, "release draft not wanted any more");
@@ -94,85 +79,8 @@ async function protectWatched(
 	}
 }
 
-async function readInputs(trx: Trx, releaseDraftId: string): Promise<Inputs | undefined> {
-	const row = await trx
-		.selectFrom("collect.release_draft as d")
-		.innerJoin("collect.survey as s", "s.survey_id", "d.survey_id")
-		.innerJoin("collect.form_version as v", "v.form_version_id", "s.form_version_id")
-		.select([
-			"d.rules",
-			"s.survey_id",
-			"s.season",
-			"s.title",
-			"s.crop_keys",
-			"s.opened_at",
-			"s.closed_at",
-			"s.closes_at",
-			"v.definition",
-		])
-		.where("d.release_draft_id", "=", releaseDraftId)
-		.where("d.status", "in", ["queued", "failed"])
-		.executeTakeFirst();
-	if (!row) return undefined;
-	const definition = FormDefinition.parse(row.definition);
-	const surveyId = row.survey_id;
-	const baseKeys = definition.measures.flatMap(({ base, key }) => (base ? key.replace(/^base\./, "") : []));
-	const rules = ReleaseRules.parse(row.rules);
-	const sensitive = sensitiveMeasures(definition);
-	const states = await countResponses(trx, surveyId);
-	const tallies = await listTallies(trx, surveyId);
-	const surveyStates = new Set(states.map((state) => state.stateFips));
-	const areas = (await listAreas(trx))
-		.filter((area) => area.stateFips === null || surveyStates.has(area.stateFips))
-		.map(({ key, kind, parentKey, stateFips, name }) => ({ areaKey: key, kind, parentKey, stateFips, name }));
-	const total = (key: "asked" | "answered") => states.reduce((sum, state) => sum + state[key], 0);
-	return {
-		rules,
-		method: {
-			formKey: definition.key,
-			season: row.season,
-			title: Words.parse(row.title),
-			openedAt: (row.opened_at ?? row.closes_at).toISOString(),
-			closedAt: (row.closed_at ?? row.closes_at).toISOString(),
-			all: { asked: total("asked"), answered: total("answered") },
-			states,
-			setAside: tallies.reduce((sum, tally) => sum + tally.setAside, 0),
-			measures: definition.measures.filter((measure) => !measure.base),
-			areas,
-			cropKeys: row.crop_keys,
-		},
-		tallies,
-		frame: await listFrameStrata(trx, surveyId),
-		frameCells: await listFrameCells(trx, surveyId),
-		baseKeys,
-		sensitive,
-		shares: await listOwnerShares(trx, {
-			surveyId,
-			baseKeys,
-			sensitiveKeys: sensitive.all,
-			countedKeys: sensitive.counted,
-			largestOwners: rules.largest?.owners,
-		}),
-		holdings: await listHoldings(trx, surveyId, { baseKeys, countedKeys: sensitive.counted }),
-	};
-}
-
-/** Who was asked and who answered. Answers begun and never sent in are in no figure, so they count as none. */
-async function countResponses(trx: Trx, surveyId: string): Promise<ReleaseMethod["states"]> {
-	const { rows } = await sql<{ stateFips: string; asked: number; answered: number }>`
-		select state_fips as "stateFips", count(*)::int as asked,
-			(count(*) filter (where disposition = 'complete'))::int as answered
-		from collect.frame_operation where survey_id = ${surveyId} group by state_fips order by state_fips`.execute(trx);
-	return rows;
-}
-
-/** Which cells of the frame have growers at all, as `area|crop`: where none is asked, none answers. */
-async function listFrameCells(trx: Trx, surveyId: string): Promise<Set<string>> {
-	const { rows } = await sql<{ county_fips: string; crop_key: string }>`
-		select distinct o.county_fips, c.crop_key
-		from collect.frame_crop c join collect.frame_operation o using (survey_id, operation_id)
-		where c.survey_id = ${surveyId}`.execute(trx);
-	return new Set(rows.flatMap((row) => [cellKey(row.county_fips, row.crop_key), cellKey(row.county_fips, ALL_CROPS)]));
+function treeOf(areas: ReleaseMethod["areas"]): { areaKey: string; parentKey: string }[] {
+	return areas.flatMap(({ areaKey, parentKey }) => (parentKey === null ? [] : [{ areaKey, parentKey }]));
 }
 
 function areasOfCounty(areas: ReleaseMethod["areas"]): Map<string, string[]> {
@@ -190,7 +98,7 @@ async function writeDraft(
 	method: ReleaseMethod,
 	audit: ReleaseAudit,
 	cells: DraftCell[],
-): Promise<void> {
+): Promise<boolean> {
 	const draft = await trx
 		.updateTable("collect.release_draft")
 		.set({
@@ -204,7 +112,7 @@ async function writeDraft(
 		.where("status", "in", ["queued", "failed"])
 		.returning("release_draft_id")
 		.executeTakeFirst();
-	if (!draft) return;
+	if (!draft) return false;
 	const rows = cells.map((cell) => ({
 		crop_key: cell.cropKey,
 		area_key: cell.areaKey,
@@ -218,4 +126,5 @@ async function writeDraft(
 			nullif(figures, 'null'::jsonb)
 		from jsonb_to_recordset(${JSON.stringify(rows)}::jsonb)
 		as c(crop_key text, area_key text, status text, reasons jsonb, respondents int, figures jsonb)`.execute(trx);
+	return true;
 }

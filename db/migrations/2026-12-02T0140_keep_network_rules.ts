@@ -9,10 +9,5 @@ export async function up(db: Kysely<unknown>): Promise<void> {
 		set_by uuid not null references auth.person on delete restrict,
 		set_at timestamptz not null default now()
 	)`.execute(db);
-	await sql`alter table directory.network_rules enable row level security`.execute(db);
-	// No secret: every release tells those that it was made with.
-	await sql`create policy everybody on directory.network_rules to tallygrove_app using (true) with check (true)`.execute(
-		db,
-	);
 	await sql`grant select, insert on directory.network_rules to tallygrove_app`.execute(db);
 }

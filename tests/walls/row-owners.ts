@@ -119,6 +119,11 @@ async function addHolder(owner: Client, surveyId: string, draftId: string, state
 		values (gen_random_uuid(), $1::uuid, 'photos', md5($1::uuid::text), 1600, 1200, 400000)`,
 		[responseId],
 	);
+	await owner.query(
+		`insert into collect.release_draft_holding (release_draft_id, owner_id, county_fips, crop_key, amounts, digest)
+		values ($1, $2, '19103', 'apple', '{}', 'sum')`,
+		[draftId, ownerId],
+	);
 	return {
 		operation_id: operationId,
 		owner_id: ownerId,

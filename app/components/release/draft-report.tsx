@@ -25,7 +25,7 @@ type ReportRow = {
 	name: string;
 	parent: string;
 	status: "shown" | "withheld" | "no_growers";
-	reason: "own" | "shield" | "nobody_answered" | null;
+	reason: "own" | "shield" | "revision" | "nobody_answered" | null;
 	respondents: number | null;
 	figures: ReportFigure[];
 };

@@ -1,0 +1,114 @@
+import { sql } from "kysely";
+import type { Trx } from "#app/auth/scope.server.ts";
+import { FormDefinition } from "#app/collect/form.ts";
+import { listAreas } from "#app/directory/areas.server.ts";
+import { Words } from "#app/lib/words.ts";
+import { ALL_CROPS } from "#app/protect/codes.ts";
+import { listHoldings } from "#app/protect/holdings.server.ts";
+import type { Holding } from "#app/protect/holdings.ts";
+import { listOwnerShares } from "#app/protect/owner-shares.server.ts";
+import type { OwnerShares } from "#app/protect/owner-shares.ts";
+import { cellKey } from "#app/protect/protect.ts";
+import type { Edition } from "#app/protect/revision.ts";
+import { type ReleaseMethod, ReleaseRules } from "#app/release/draft.ts";
+import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
+import type { FrameStratum, KeptTally } from "#app/tally/tally.ts";
+import { listEarlierEditions } from "./draft-basis.server.ts";
+import { type SensitiveMeasures, sensitiveMeasures } from "./sensitive-measures.ts";
+
+export type DraftInputs = {
+	rules: ReleaseRules;
+	method: Omit<ReleaseMethod, "joins">;
+	tallies: KeptTally[];
+	frame: (FrameStratum & { cropKey: string })[];
+	frameCells: ReadonlySet<string>;
+	baseKeys: string[];
+	sensitive: SensitiveMeasures;
+	shares: OwnerShares[];
+	holdings: Holding[];
+	/** Releases of the survey so far; a first one has none. */
+	earlier: Edition[];
+};
+
+/** What a draft that waits to be computed is made of, or undefined when it no longer waits. */
+export async function readInputs(trx: Trx, releaseDraftId: string): Promise<DraftInputs | undefined> {
+	const row = await trx
+		.selectFrom("collect.release_draft as d")
+		.innerJoin("collect.survey as s", "s.survey_id", "d.survey_id")
+		.innerJoin("collect.form_version as v", "v.form_version_id", "s.form_version_id")
+		.select([
+			"d.rules",
+			"s.survey_id",
+			"s.season",
+			"s.title",
+			"s.crop_keys",
+			"s.opened_at",
+			"s.closed_at",
+			"s.closes_at",
+			"v.definition",
+		])
+		.where("d.release_draft_id", "=", releaseDraftId)
+		.where("d.status", "in", ["queued", "failed"])
+		.executeTakeFirst();
+	if (!row) return undefined;
+	const definition = FormDefinition.parse(row.definition);
+	const surveyId = row.survey_id;
+	const baseKeys = definition.measures.flatMap(({ base, key }) => (base ? key.replace(/^base\./, "") : []));
+	const rules = ReleaseRules.parse(row.rules);
+	const sensitive = sensitiveMeasures(definition);
+	const states = await countResponses(trx, surveyId);
+	const tallies = await listTallies(trx, surveyId);
+	const surveyStates = new Set(states.map((state) => state.stateFips));
+	const areas = (await listAreas(trx))
+		.filter((area) => area.stateFips === null || surveyStates.has(area.stateFips))
+		.map(({ key, kind, parentKey, stateFips, name }) => ({ areaKey: key, kind, parentKey, stateFips, name }));
+	const total = (key: "asked" | "answered") => states.reduce((sum, state) => sum + state[key], 0);
+	return {
+		rules,
+		method: {
+			formKey: definition.key,
+			season: row.season,
+			title: Words.parse(row.title),
+			openedAt: (row.opened_at ?? row.closes_at).toISOString(),
+			closedAt: (row.closed_at ?? row.closes_at).toISOString(),
+			all: { asked: total("asked"), answered: total("answered") },
+			states,
+			setAside: tallies.reduce((sum, tally) => sum + tally.setAside, 0),
+			measures: definition.measures.filter((measure) => !measure.base),
+			areas,
+			cropKeys: row.crop_keys,
+		},
+		tallies,
+		frame: await listFrameStrata(trx, surveyId),
+		frameCells: await listFrameCells(trx, surveyId),
+		baseKeys,
+		sensitive,
+		shares: await listOwnerShares(trx, {
+			surveyId,
+			baseKeys,
+			sensitiveKeys: sensitive.all,
+			countedKeys: sensitive.counted,
+			largestOwners: rules.largest?.owners,
+		}),
+		holdings: await listHoldings(trx, surveyId, { baseKeys, countedKeys: sensitive.counted }),
+		earlier: await listEarlierEditions(trx, surveyId),
+	};
+}
+
+/** Who was asked and who answered. Answers begun and never sent in are in no figure, so they count as none. */
+async function countResponses(trx: Trx, surveyId: string): Promise<ReleaseMethod["states"]> {
+	const { rows } = await sql<{ stateFips: string; asked: number; answered: number }>`
+		select state_fips as "stateFips", count(*)::int as asked,
+			(count(*) filter (where disposition = 'complete'))::int as answered
+		from collect.frame_operation where survey_id = ${surveyId} group by state_fips order by state_fips`.execute(trx);
+	return rows;
+}
+
+/** Which cells of the frame have growers at all, as `area|crop`: where none is asked, none answers. */
+async function listFrameCells(trx: Trx, surveyId: string): Promise<Set<string>> {
+	const { rows } = await sql<{ county_fips: string; crop_key: string }>`
+		select distinct o.county_fips, c.crop_key
+		from collect.frame_crop c join collect.frame_operation o using (survey_id, operation_id)
+		where c.survey_id = ${surveyId}`.execute(trx);
+	return new Set(rows.flatMap((row) => [cellKey(row.county_fips, row.crop_key), cellKey(row.county_fips, ALL_CROPS)]));
+}
