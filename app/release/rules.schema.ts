@@ -57,9 +57,10 @@ export function rulesOf(form: RulesForm): ReleaseRules {
 	};
 }
 
+const percent = (part: number) => Number((part * 100).toFixed(6));
+
 /** What stands in the boxes before anybody types. */
 export function formOf(rules: ReleaseRules): Record<keyof RulesForm, number | null> {
-	const percent = (part: number) => Number((part * 100).toFixed(6));
 	return {
 		minimumOwners: rules.minimumOwners,
 		dominancePercent: rules.dominancePercent,
