@@ -47,7 +47,8 @@ export function tryOwners(
 	const parts = block.unknowns.map(partsOf);
 	const here = targets.filter(({ unknown }) => column.has(unknown));
 	const found: OwnersFound = { failed: [], objectors: [], tried: 0, runs: 0 };
-	if (here.length === 0 || parts.every((list) => list.length === 0)) return found;
+	// Where nothing ties an unknown to others, knowing others does not help.
+	if (block.rows.length === 0 || here.length === 0 || parts.every((list) => list.length === 0)) return found;
 	const search = new PointSearch(solver, block);
 	const knows = holdsByOwner(block, parts);
 	const objectors = new Set<string>();

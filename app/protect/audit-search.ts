@@ -9,6 +9,7 @@ const ROUNDING = 1e-6;
 
 /** Every unknown's interval of values that fit all that is known, by unknown. */
 export function intervalsOf(solver: Solver, block: AuditBlock): { intervals: Map<number, Interval>; runs: number } {
+	if (block.rows.length === 0) return { intervals: freeIntervals(block), runs: 0 };
 	const program = new AuditProgram(
 		solver,
 		block.ends.map(([lower, upper]) => [lower, upper, 0]),
@@ -32,6 +33,16 @@ export function intervalsOf(solver: Solver, block: AuditBlock): { intervals: Map
 	} finally {
 		program.dispose();
 	}
+}
+
+/** What nothing ties to anything has all the room that everybody leaves it. */
+function freeIntervals({ unknowns, values, ends, scale }: AuditBlock): Map<number, Interval> {
+	return new Map(
+		unknowns.map((unknown, column): [number, Interval] => {
+			const [lower, upper] = ends[column]!;
+			return [unknown, [values[column]! + lower * scale, values[column]! + upper * scale]];
+		}),
+	);
 }
 
 /** What an owner knows of a column: it is at least this much below the truth (0: the truth itself, on both sides). */

@@ -1,4 +1,4 @@
-import { type OwnerPart, partsOf } from "./parts.ts";
+import { type OwnerPart, partsOf, shareOf } from "./parts.ts";
 import { type ProtectionRules, shortfall } from "./rules.ts";
 import type { OwnerShare, ProtectionTable, Quantity } from "./table.ts";
 
@@ -88,20 +88,6 @@ function together(
 	const list = [...owners.values()];
 	const share = (quantity: Quantity) => shareOf(list, table.quantities.indexOf(quantity), rules);
 	return { owners: owners.size, share };
-}
-
-function shareOf(parts: readonly OwnerPart[], q: number, rules: ProtectionRules): OwnerShare {
-	const amounts = parts.map((part) => part.amounts[q]!).toSorted((a, b) => b - a);
-	const unwaived = parts.flatMap(({ waived, amounts: own }) => (waived ? [] : [own[q]!])).toSorted((a, b) => b - a);
-	const [top1 = 0, top2 = 0] = amounts;
-	const first = unwaived[0] ?? 0;
-	return {
-		total: sum(amounts),
-		top1,
-		top2,
-		...(first < top1 && { guarded: { first, other: top1 } }),
-		largest: sum(unwaived.slice(0, rules.largest?.owners ?? 0)),
-	};
 }
 
 function apart(table: ProtectionTable, cells: readonly number[]): ReturnType<Sharer> {

@@ -1,5 +1,6 @@
 import { groupBy } from "#app/lib/group-by.ts";
-import { cellKey, type ProtectionTable, type TableHolding } from "./table.ts";
+import type { ProtectionRules } from "./rules.ts";
+import { cellKey, type OwnerShare, type ProtectionTable, type TableHolding } from "./table.ts";
 
 /** What one owner holds of a cell: by position in the table's quantities. */
 export interface OwnerPart {
@@ -76,4 +77,23 @@ function soleHoldings(table: ProtectionTable): TableHolding[] {
 function chainOf(parent: Readonly<Record<string, string>>, code: string): string[] {
 	const above = parent[code];
 	return above === undefined ? [code] : [code, ...chainOf(parent, above)];
+}
+
+/** Owners' parts as a share of one quantity: total, two largest, and what waivers and the (n, k) rule need. */
+export function shareOf(parts: readonly OwnerPart[], q: number, rules: ProtectionRules): OwnerShare {
+	const amounts = parts.map((part) => part.amounts[q]!).toSorted((a, b) => b - a);
+	const unwaived = parts.flatMap(({ waived, amounts: own }) => (waived ? [] : [own[q]!])).toSorted((a, b) => b - a);
+	const [top1 = 0, top2 = 0] = amounts;
+	const first = unwaived[0] ?? 0;
+	return {
+		total: sum(amounts),
+		top1,
+		top2,
+		...(first < top1 && { guarded: { first, other: top1 } }),
+		largest: sum(unwaived.slice(0, rules.largest?.owners ?? 0)),
+	};
+}
+
+function sum(list: readonly number[]): number {
+	return list.reduce((a, b) => a + b, 0);
 }

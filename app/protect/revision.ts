@@ -92,7 +92,7 @@ export function guardRevision(input: {
 }
 
 /** By how much each quantity of one owner differs in a cell. */
-type Change = number[];
+export type Change = readonly number[];
 
 function judge(
 	cellKey: string,
@@ -108,7 +108,11 @@ function judge(
 	return { cellKey, edition: name, wasShown, changedOwners: owners.length, difference, verdict };
 }
 
-function differenceOf(owners: readonly Change[], quantities: readonly string[], rules: ProtectionRules): Difference {
+export function differenceOf(
+	owners: readonly Change[],
+	quantities: readonly string[],
+	rules: ProtectionRules,
+): Difference {
 	if (owners.length === 0) return "none";
 	if (owners.length < rules.minimumOwners) return "few";
 	const dominated = quantities.some(
@@ -153,7 +157,7 @@ function room(
 }
 
 /** cell -> owner -> by how much that owner's amounts in the cell differ; owners with no other answers are not in it. */
-function changesByCell(
+export function changesByCell(
 	before: readonly Holding[],
 	after: readonly Holding[],
 	quantities: readonly string[],

@@ -45,7 +45,8 @@ export function surveyTable(input: {
 	return holdings ? { ...table, holdings: placed(table, areas, holdings) } : table;
 }
 
-function placed(table: ProtectionTable, areas: AreaTree, holdings: readonly Holding[]): TableHolding[] {
+/** Holdings with the cells of a table that each is counted in. */
+export function placed(table: ProtectionTable, areas: AreaTree, holdings: readonly Holding[]): TableHolding[] {
 	const around = cellsAround(areas);
 	const position = new Map(table.cells.map((cell, index) => [cell.key, index]));
 	return holdings.map(({ owner, waived, amounts, areaKey, cropKey }) => {
