@@ -2,7 +2,7 @@ import { sql } from "kysely";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import { estimateSurvey } from "#app/estimate/survey.ts";
 import { log } from "#app/lib/log.server.ts";
-import type { Protection, ProtectionTable } from "#app/protect/protect.ts";
+import { protect, type Protection, type ProtectionTable } from "#app/protect/protect.ts";
 import { protectInThread } from "#app/protect/protect-thread.server.ts";
 import { guardRevision } from "#app/protect/revision.ts";
 import { surveyTable } from "#app/protect/survey-table.ts";
@@ -12,6 +12,9 @@ import { assembleCells } from "./assemble-cells.ts";
 import { keepBasis } from "./draft-basis.server.ts";
 import { type DraftInputs, readInputs } from "./draft-inputs.server.ts";
 import { DraftNotWanted, gapOf, watchDraft } from "./draft-watch.server.ts";
+
+/** Cells with answers that a table may have to be protected without a thread of its own. */
+const FEW_CELLS = 40;
 
 /**
  * Makes a draft's cells: tally, estimate, protect, audit. Reading and writing are two short transactions, with the long
@@ -63,12 +66,14 @@ export async function computeReleaseDraft(
 async function protectWatched(
 	releaseDraftId: string,
 	table: ProtectionTable,
-	{ rules, method, earlier, holdings }: DraftInputs,
+	{ rules, method, shares, earlier, holdings }: DraftInputs,
 	transact: typeof scopedTransaction,
 ): Promise<Protection | undefined> {
 	const quantities = table.quantities.map(({ key }) => key);
 	const areas = treeOf(method.areas);
 	const guard = earlier.length > 0 ? guardRevision({ areas, quantities, rules, earlier, holdings }) : undefined;
+	// Such a table is done before a thread of its own would have begun.
+	if (shares.length <= FEW_CELLS) return protect(table, rules, { guard });
 	await using watch = watchDraft(releaseDraftId, transact);
 	try {
 		return await protectInThread(table, rules, { guard }, watch);
