@@ -15,7 +15,7 @@ import type { Bench } from "./line.ts";
 
 const counties = fileURLToPath(new URL("../reference/data/disclosure/large_county_category.csv", import.meta.url));
 const published: ProtectOptions = { ownersAttack: false, grandTotal: "never" };
-const asked = 400;
+const asked = 200;
 
 /** How long shields take, how near the least loss they are, and what a reader of public pages notices meanwhile. */
 export async function protect({ print }: Bench): Promise<void> {
