@@ -77,6 +77,8 @@ export default [
 			index("routes/desk/overview.tsx"),
 			route("growers", "routes/desk/growers.tsx"),
 			route("growers/chosen", "routes/desk/growers-chosen.tsx"),
+			route("growers/duplicates", "routes/desk/growers-duplicates.tsx"),
+			route("growers/merge/:keptId/:droppedId", "routes/desk/growers-merge.tsx"),
 			route("growers/import", "routes/desk/growers-import.tsx"),
 			route("growers/import/:importId", "routes/desk/growers-import-file.tsx"),
 			route("growers/:operationId", "routes/desk/grower.tsx"),

@@ -20,6 +20,20 @@ export async function lockOwnOperation(trx: Trx, viewer: Grower, operationId: st
 	return findOwnOperation(trx, viewer, operationId);
 }
 
+/**
+ * Frees the operations that were merged into one that leaves, so that they can leave as it does, each with its own answers.
+ * @param trx under scope `network`: they are nobody's own.
+ */
+export async function freeMergedInto(trx: Trx, operationId: string) {
+	return trx
+		.updateTable("directory.operation")
+		.set({ status: "active", merged_into: null })
+		.where("merged_into", "=", operationId)
+		.where("status", "=", "merged")
+		.returning(["operation_id as operationId", "state_fips as stateFips"])
+		.execute();
+}
+
 /** Blanks what is written down about an operation and marks it as having left. County, crops and counts of plants stay. */
 export async function forgetOperation(
 	trx: Trx,

@@ -57,6 +57,15 @@ export async function findOperation(trx: Trx, viewer: Associate, operationId: st
 		.where("o.operation_id", "=", operationId)
 		.executeTakeFirst();
 	if (!operation) return undefined;
+	const merged = await trx
+		.selectFrom("directory.operation as o")
+		.where("o.merged_into", "=", operationId)
+		.where("o.status", "=", "merged")
+		.where(isSeenBy(viewer))
+		.select(["o.operation_id as operationId", "o.name"])
+		.orderBy("o.name")
+		.orderBy("o.operation_id")
+		.execute();
 	const plantings = await trx
 		.selectFrom("directory.planting")
 		.select([
@@ -77,7 +86,7 @@ export async function findOperation(trx: Trx, viewer: Associate, operationId: st
 			a.cultivar.localeCompare(b.cultivar) ||
 			a.plantingId.localeCompare(b.plantingId),
 	);
-	return { ...operation, language: operation.language as "en" | "es", plantings: byCrop };
+	return { ...operation, language: operation.language as "en" | "es", plantings: byCrop, merged };
 }
 
 /** Enters an operation with an owner of its own. A county outside the viewer's states is as unknown as one that is not. */

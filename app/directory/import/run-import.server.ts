@@ -109,7 +109,7 @@ async function makeOperations(trx: Trx, importId: string, groups: Row[][], choic
 		trx,
 		importId,
 		made.map(({ rows, operationId, ownerId }) => ({
-			firstRow: rows[0]!.firstRow,
+			rows,
 			operationId,
 			restore: { made: "operation", ownerId },
 		})),
@@ -155,7 +155,7 @@ async function changeOperations(trx: Trx, importId: string, groups: Row[][]): Pr
 		trx,
 		importId,
 		changes.map(({ rows, before, added, changed }) => ({
-			firstRow: rows[0]!.firstRow,
+			rows,
 			operationId: before.operation_id,
 			restore: {
 				made: "change",
@@ -261,11 +261,14 @@ async function changePlantings(trx: Trx, changed: Changed[]): Promise<void> {
 		where p.planting_id = j.planting_id`.execute(trx);
 }
 
-type Noted = { firstRow: number; operationId: string; restore: Restore };
+type Noted = { rows: Row[]; operationId: string; restore: Restore };
 
+/** Rows are found by their numbers: by their first rows, all of the file would be looked through for each part of it. */
 async function noteRows(trx: Trx, importId: string, noted: Noted[]): Promise<void> {
-	await sql`update directory.import_row r set operation_id = j."operationId",
-			restore = case when r.row_number = j."firstRow" then j.restore end
-		from jsonb_to_recordset(${JSON.stringify(noted)}::jsonb) as j ("firstRow" int, "operationId" uuid, restore jsonb)
-		where r.import_id = ${importId} and r.first_row = j."firstRow" and r.problems = '[]'`.execute(trx);
+	const told = noted.flatMap(({ rows, operationId, restore }) =>
+		rows.map(({ number, firstRow }) => ({ number, operationId, restore: number === firstRow ? restore : null })),
+	);
+	await sql`update directory.import_row r set operation_id = j."operationId", restore = j.restore
+		from jsonb_to_recordset(${JSON.stringify(told)}::jsonb) as j (number int, "operationId" uuid, restore jsonb)
+		where r.import_id = ${importId} and r.row_number = j.number`.execute(trx);
 }

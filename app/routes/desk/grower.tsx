@@ -19,6 +19,7 @@ import { mendAddress } from "#app/directory/mail-address.server.ts";
 import { findOperation } from "#app/directory/operations.server.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import { MergedNotice } from "./parts/merging/merged-notice.tsx";
 import { AddressForm } from "./parts/address-form.tsx";
 import { useGrowerName } from "./parts/grower-name.ts";
 import { PlantingTable } from "./parts/planting-table.tsx";
@@ -82,6 +83,7 @@ export default function GrowerPage({ loaderData, actionData }: Route.ComponentPr
 			<ErrorSummary problems={actionData?.problems} labels={{ email: t("grower.email") }} />
 			{actionData?.refused && <Notice tone="attention">{t(`grower.refused.${actionData.refused}`)}</Notice>}
 			<Contact operation={operation} />
+			<MergedNotice operation={operation} />
 			{operation.status === "active" && (
 				<AddressForm
 					email={operation.email}

@@ -74,9 +74,14 @@ export default function Growers({ loaderData, actionData }: Route.ComponentProps
 			title={t("desk:growers.title")}
 			lead={t("desk:growers.lead")}
 			actions={
-				<ButtonLink to={href("/desk/growers/import")} kind="secondary">
-					{t("list.import")}
-				</ButtonLink>
+				<>
+					<ButtonLink to={href("/desk/growers/duplicates")} kind="secondary">
+						{t("list.duplicates")}
+					</ButtonLink>
+					<ButtonLink to={href("/desk/growers/import")} kind="secondary">
+						{t("list.import")}
+					</ButtonLink>
+				</>
 			}
 		>
 			<ErrorSummary problems={actionData?.problems} labels={{ name: t("views.name") }} />
