@@ -82,6 +82,7 @@ export default [
 			route("growers/import", "routes/desk/growers-import.tsx"),
 			route("growers/import/:importId", "routes/desk/growers-import-file.tsx"),
 			route("growers/:operationId", "routes/desk/grower.tsx"),
+			route("growers/:operationId/edit", "routes/desk/grower-edit.tsx"),
 			route("surveys", "routes/desk/surveys.tsx"),
 			route("surveys/new", "routes/desk/survey-new.tsx"),
 			...prefix("surveys/:surveyId", [

@@ -8,7 +8,7 @@ export const logActions = {
 	survey: ["created", "opened", "extended", "closed", "invited", "reminders_set", "reminded", "link_replaced"],
 	operation: [
 		...(["moved", "left", "mail_stopped", "mail_resumed", "address_mended"] as const),
-		...(["language_set", "tried_anew", "exported", "merged", "merge_undone"] as const),
+		...(["language_set", "tried_anew", "exported", "merged", "merge_undone", "edited"] as const),
 		...(["publication_allowed", "publication_disallowed"] as const),
 	],
 	import: ["finished", "undone"],

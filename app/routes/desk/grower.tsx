@@ -2,13 +2,17 @@ import { useTranslation } from "react-i18next";
 import { data, href, Link, redirect } from "react-router";
 import { z } from "zod";
 import type { Route } from "./+types/grower";
+import { listGrantees } from "#app/auth/grantees.server.ts";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import { ContactForm } from "#app/collect/contacts.schema.ts";
+import { listContacts, noteContact } from "#app/collect/contacts.server.ts";
 import { sendNewLink } from "#app/collect/new-link.server.ts";
 import { listOperationSurveys } from "#app/collect/operation-surveys.server.ts";
 import { markReachable } from "#app/collect/reach.server.ts";
+import { ButtonLink } from "#app/components/button.tsx";
 import { DescriptionList } from "#app/components/description-list.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
@@ -21,6 +25,8 @@ import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { MergedNotice } from "./parts/merging/merged-notice.tsx";
 import { AddressForm } from "./parts/address-form.tsx";
+import { Contacts } from "./parts/growers/contacts.tsx";
+import { People } from "./parts/growers/people.tsx";
 import { useGrowerName } from "./parts/grower-name.ts";
 import { PlantingTable } from "./parts/planting-table.tsx";
 import { SurveysOfGrower } from "./parts/surveys-of-grower.tsx";
@@ -29,7 +35,14 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
 	const found = await desk.transaction(async (trx) => {
 		const operation = await findOperation(trx, desk.viewer, params.operationId);
-		return operation && { operation, surveys: await listOperationSurveys(trx, desk.viewer, operation.operationId) };
+		if (!operation) return undefined;
+		const { operationId } = operation;
+		return {
+			operation,
+			surveys: await listOperationSurveys(trx, desk.viewer, operationId),
+			people: await listGrantees(trx, operationId),
+			contacts: await listContacts(trx, operationId),
+		};
 	});
 	if (!found) throw refusal("operation_not_found");
 	return found;
@@ -37,6 +50,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 
 const Step = z.discriminatedUnion("step", [
 	z.object({ step: z.literal("link"), surveyId: z.guid(), wave: z.coerce.number().int().min(1) }),
+	ContactForm.extend({ step: z.literal("contact") }),
 	z.object({ step: z.literal("address"), email: z.email("email_wrong").max(254, "too_long").optional() }),
 ]);
 
@@ -44,17 +58,23 @@ const Step = z.discriminatedUnion("step", [
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
 	const form = parseForm(Step, await request.formData());
-	if (!form.ok && form.values.step !== "address") throw refusal("form_not_understood");
+	if (!form.ok && form.values.step !== "address" && form.values.step !== "contact")
+		throw refusal("form_not_understood");
 	if (!form.ok) return data({ refused: null, values: form.values, problems: form.problems }, { status: 400 });
 
 	const { value: step } = form;
 	const { operationId } = params;
-	const outcome = await desk.transaction(async (trx) =>
-		step.step === "link"
+	const outcome = await desk.transaction(async (trx) => {
+		if (step.step === "contact") return noteContact(trx, desk.viewer, operationId, step);
+		return step.step === "link"
 			? sendNewLink(trx, desk.viewer, step.surveyId, operationId, step.wave)
-			: mend(trx, desk.viewer, operationId, step.email ?? null),
-	);
+			: mend(trx, desk.viewer, operationId, step.email ?? null);
+	});
 	if (outcome === "not_found") throw refusal("operation_not_found");
+	if (outcome === "noted") {
+		context.get(sessionContext).flash("toast", { key: "growers:contact.saved" });
+		return redirect(href("/desk/growers/:operationId", params), 303);
+	}
 	if (typeof outcome === "string") return data({ refused: outcome, values: undefined, problems: [] }, { status: 409 });
 	const toast =
 		"name" in outcome
@@ -72,25 +92,38 @@ async function mend(trx: Trx, viewer: Associate, operationId: string, email: str
 }
 
 export default function GrowerPage({ loaderData, actionData }: Route.ComponentProps) {
-	const { operation, surveys } = loaderData;
+	const { operation, surveys, people, contacts } = loaderData;
 	const { t } = useTranslation("desk");
+	const sent = actionData?.values?.step;
+	const ofContact = sent === "contact" ? { values: actionData?.values, problems: actionData?.problems } : {};
+	const ofAddress = sent === "address" ? { values: actionData?.values, problems: actionData?.problems } : {};
 	const nameOf = useGrowerName();
 	return (
-		<Page title={nameOf(operation.name)}>
+		<Page
+			title={nameOf(operation.name)}
+			actions={
+				operation.status === "active" && (
+					<ButtonLink
+						to={href("/desk/growers/:operationId/edit", { operationId: operation.operationId })}
+						kind="secondary"
+					>
+						{t("growers:edit.button")}
+					</ButtonLink>
+				)
+			}
+		>
 			<p className="no-print mb-4">
 				<Link to={href("/desk/growers")}>{t("grower.back")}</Link>
 			</p>
-			<ErrorSummary problems={actionData?.problems} labels={{ email: t("grower.email") }} />
+			<ErrorSummary
+				problems={actionData?.problems}
+				labels={{ email: t("grower.email"), note: t("growers:contact.note"), nextOn: t("growers:contact.nextOn") }}
+			/>
 			{actionData?.refused && <Notice tone="attention">{t(`grower.refused.${actionData.refused}`)}</Notice>}
 			<Contact operation={operation} />
 			<MergedNotice operation={operation} />
 			{operation.status === "active" && (
-				<AddressForm
-					email={operation.email}
-					returned={operation.mailReturnedAt !== null}
-					values={actionData?.values}
-					problems={actionData?.problems}
-				/>
+				<AddressForm email={operation.email} returned={operation.mailReturnedAt !== null} {...ofAddress} />
 			)}
 			<Section title={t("grower.plantings")}>
 				<PlantingTable plantings={operation.plantings} />
@@ -98,6 +131,13 @@ export default function GrowerPage({ loaderData, actionData }: Route.ComponentPr
 			<Section title={t("surveys.title")}>
 				<SurveysOfGrower surveys={surveys} operation={operation} />
 			</Section>
+			<Contacts
+				contacts={contacts}
+				timeZone={operation.timeZone}
+				canNote={operation.status === "active"}
+				{...ofContact}
+			/>
+			<People people={people} />
 		</Page>
 	);
 }

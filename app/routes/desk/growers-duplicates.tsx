@@ -68,7 +68,12 @@ export default function GrowersDuplicates({ loaderData, actionData }: Route.Comp
 					{
 						key: "signs",
 						header: t("merge.signs"),
-						cell: ({ signs }) => format.list(signs.map((sign) => t(`merge.sign.${sign}`))),
+						cell: ({ signs }) =>
+							signs.map((sign) => (
+								<span key={sign} className="block">
+									{t(`merge.sign.${sign}`)}
+								</span>
+							)),
 					},
 					{ key: "do", header: t("merge.next"), cell: (pair) => <PairSteps {...pair} /> },
 				]}

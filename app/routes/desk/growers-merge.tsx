@@ -106,7 +106,9 @@ export default function GrowersMerge({ loaderData }: Route.ComponentProps) {
 				<Plantings kept={kept} dropped={dropped} />
 				<Section title={t("merge.what")}>
 					<ul className="max-w-prose list-disc space-y-1 pl-6">
-						<li>{t("merge.answers", { count: answered, value: format.number(answered), other: dropped.name })}</li>
+						{answered > 0 && (
+							<li>{t("merge.answers", { count: answered, value: format.number(answered), other: dropped.name })}</li>
+						)}
 						<li>{t("merge.open")}</li>
 						<li>{t("merge.people")}</li>
 						<li>{t("merge.wayBack")}</li>

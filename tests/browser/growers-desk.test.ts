@@ -1,0 +1,226 @@
+import type { Browser, Page } from "playwright-core";
+import { Client } from "pg";
+import { afterAll, beforeAll, expect, test } from "vitest";
+import { axeFindings, openBrowser, openPage, phone, signIn } from "#tests/helpers/browser.ts";
+import { type Stack, startStack } from "#tests/helpers/stack.ts";
+
+let stack: Stack;
+let browser: Browser;
+let associate: Page;
+
+beforeAll(async () => {
+	[stack, browser] = await Promise.all([startStack(), openBrowser()]);
+	const owner = new Client({ connectionString: stack.database.ownerUrl });
+	await owner.connect();
+	for (const [name, email, crop] of [
+		["Quail Bend Orchard", "ada@quailbend.example", "apple"],
+		["Quail Bend Fruit Farm", "ada@quailbend.example", "plum"],
+		["Otter Slough Fruit", null, "plum"],
+	])
+		await owner.query(
+			`with o as (insert into directory.owner (name) values ('Ada Quill') returning owner_id),
+			p as (insert into directory.operation (owner_id, name, county_fips, state_fips, contact_name, email)
+				select owner_id, $1, '19103', '19', 'Ada Quill', $2 from o returning operation_id)
+			insert into directory.planting (operation_id, crop_key, bearing_trees) select operation_id, $3, 40 from p`,
+			[name, email, crop],
+		);
+	associate = await openPage(browser);
+	await signIn(associate, stack.baseUrl, "Del Fenwick");
+	await owner.query(
+		`insert into auth.role_grant (person_id, role, state_fips)
+		select person_id, 'associate', '19' from auth.person where subject = 'demo-del-fenwick'`,
+	);
+	await owner.end();
+});
+afterAll(async () => {
+	await browser?.close();
+	await stack?.[Symbol.asyncDispose]();
+});
+
+/** Goes to a button or link by keyboard and presses it there. */
+async function press(page: Page, role: "button" | "link", name: string | RegExp): Promise<void> {
+	await page.getByRole(role, { name }).first().focus();
+	await page.keyboard.press("Enter");
+}
+
+async function fits(page: Page): Promise<void> {
+	expect(await page.evaluate(() => document.documentElement.scrollWidth - innerWidth), page.url()).toBeLessThanOrEqual(
+		0,
+	);
+	expect(await axeFindings(page)).toEqual([]);
+}
+
+const readIn = async (page: Page, name: string, text: string) => {
+	await page.goto(`${stack.baseUrl}/desk/growers/import`);
+	await page.setInputFiles("[name=file]", { name, mimeType: "text/csv", buffer: Buffer.from(text) });
+	await press(page, "button", "Read the file");
+	await page.getByRole("heading", { name: "Which column holds what" }).waitFor();
+};
+
+test("an associate narrows the list, keeps that as a view, and acts on those in it", async () => {
+	const page = associate;
+	await page.goto(`${stack.baseUrl}/desk/growers`);
+	await page.selectOption("[name=crop]", "plum");
+	await press(page, "button", "Search");
+	await expect.poll(() => page.locator("tbody tr").count()).toBe(2);
+	await fits(page);
+	await page.locator("summary", { hasText: "Keep this list" }).focus();
+	await page.keyboard.press("Enter");
+	await page.fill("[name=name]", "Plums");
+	await page.keyboard.press("Enter");
+	await page.getByText("The view is kept.").waitFor();
+	await page.goto(`${stack.baseUrl}/desk/growers`);
+	expect(await page.locator("tbody tr").count()).toBe(3);
+	await press(page, "link", "Plums");
+	await expect.poll(() => page.locator("tbody tr").count()).toBe(2);
+
+	await page.selectOption("[name=which]", "matching");
+	await press(page, "button", "Choose what to do");
+	await page.getByRole("heading", { name: "2 growers chosen" }).waitFor();
+	await fits(page);
+	await press(page, "button", "Set to Spanish");
+	await page.getByText("Set the language of 2 growers to Spanish?").waitFor();
+	expect(await axeFindings(page)).toEqual([]);
+	await press(page, "button", "Do it");
+	await page.getByText("The language of 2 growers is set.").waitFor();
+});
+
+test("a file with errors is mended and read in, and the import undone", async () => {
+	const page = associate;
+	await readIn(
+		page,
+		"list.csv",
+		"Farm;County;E-mail;Crop;Trees\nAlder Creek;Jonhson;al@alder.example;Apple;12\nBirch Hollow;Johnson;bo@birch.example;Plum;30\n",
+	);
+	await fits(page);
+	await press(page, "button", "Check the rows");
+	await page.getByText("did you mean Johnson?").waitFor();
+	await fits(page);
+	const [download] = await Promise.all([
+		page.waitForEvent("download"),
+		press(page, "link", "Download the rows to mend"),
+	]);
+	const chunks: Buffer[] = [];
+	for await (const chunk of await download.createReadStream()) chunks.push(chunk as Buffer);
+	const bad = Buffer.concat(chunks).toString();
+	expect(bad).toContain("Alder Creek");
+	expect(bad).not.toContain("Birch Hollow");
+	await press(page, "button", "Take 1 grower into the list");
+	await press(page, "button", "Take them in");
+	await page.getByRole("button", { name: "Undo this import" }).waitFor();
+
+	await readIn(page, "mended.csv", bad.replace("Jonhson", "Johnson"));
+	await press(page, "button", "Check the rows");
+	await press(page, "button", "Take 1 grower into the list");
+	await press(page, "button", "Take them in");
+	await page.getByRole("button", { name: "Undo this import" }).waitFor();
+	await fits(page);
+	await page.goto(`${stack.baseUrl}/desk/growers?q=alder`);
+	expect(await page.locator("tbody tr").count()).toBe(1);
+
+	await page.goto(`${stack.baseUrl}/desk/growers/import`);
+	await fits(page);
+	await press(page, "link", "mended.csv");
+	await press(page, "button", "Undo this import");
+	await press(page, "button", "Undo it");
+	await page.getByText("Undone", { exact: true }).waitFor();
+	await page.goto(`${stack.baseUrl}/desk/growers?q=alder`);
+	expect(await page.locator("tbody tr").count()).toBe(0);
+});
+
+test("two that are one are compared, merged, and made two again", async () => {
+	const page = associate;
+	await page.goto(`${stack.baseUrl}/desk/growers/duplicates`);
+	await fits(page);
+	await press(page, "link", /^Compare Quail Bend/);
+	await page.getByRole("heading", { name: "This one stays" }).waitFor();
+	await fits(page);
+	await press(page, "button", "Merge the two");
+	await page.locator("dialog[open]").waitFor();
+	await page.locator("dialog[open]").getByRole("button", { name: "Merge the two" }).focus();
+	await page.keyboard.press("Enter");
+	await page.getByText("The two are one grower now.").waitFor();
+	await page.locator("summary", { hasText: "Note a contact" }).focus();
+	await page.keyboard.press("Enter");
+	await page.fill("[name=note]", "Rang about the two names");
+	await fits(page);
+	await press(page, "button", "Note it");
+	await page.getByText("Rang about the two names").waitFor();
+	await page.goto(`${stack.baseUrl}/desk/growers?q=quail`);
+	expect(await page.locator("tbody tr").count()).toBe(1);
+	await page.goto(`${stack.baseUrl}/desk/growers/duplicates`);
+	await press(page, "button", "Undo");
+	await page.locator("dialog[open]").getByRole("button", { name: "Undo" }).focus();
+	await page.keyboard.press("Enter");
+	await page.getByText("They are two growers again.").waitFor();
+	await page.goto(`${stack.baseUrl}/desk/growers?q=quail`);
+	expect(await page.locator("tbody tr").count()).toBe(2);
+});
+
+test("the list and a file work in Spanish on a phone without scripts", async () => {
+	const plain = await openPage(browser, {
+		...phone,
+		javaScriptEnabled: false,
+		language: "es-US",
+		storageState: await associate.context().storageState(),
+	});
+	await plain.goto(`${stack.baseUrl}/desk/growers`);
+	await plain.getByRole("heading", { name: "Productores" }).waitFor();
+	await plain.selectOption("[name=which]", "page");
+	await plain.getByRole("button", { name: "Elegir qué hacer" }).click();
+	await plain.getByRole("heading", { name: /productores elegidos/ }).waitFor();
+	await plain.goto(`${stack.baseUrl}/desk/growers/import`);
+	await plain.getByRole("button", { name: "Leer el archivo" }).click();
+	await plain.getByRole("link", { name: "Elija un archivo" }).waitFor();
+	await plain.setInputFiles("[name=file]", {
+		name: "lista.csv",
+		mimeType: "text/csv",
+		buffer: Buffer.from("Finca,Condado\nCerro Alto,Johnson\n"),
+	});
+	await plain.getByRole("button", { name: "Leer el archivo" }).click();
+	await expect
+		.poll(async () => {
+			await plain.reload();
+			return plain.getByRole("button", { name: "Revisar las filas" }).count();
+		})
+		.toBe(1);
+	await plain.getByRole("button", { name: "Revisar las filas" }).click();
+	await expect
+		.poll(async () => {
+			await plain.reload();
+			return plain.getByText("¿Pasar 1 productor a la lista?").count();
+		})
+		.toBe(1);
+	await plain.context().close();
+});
+
+test("every page fits a phone in Spanish, and axe finds nothing", async () => {
+	const page = await openPage(browser, {
+		...phone,
+		language: "es-US",
+		storageState: await associate.context().storageState(),
+	});
+	for (const path of ["", "/chosen?which=matching", "/import", "/duplicates"]) {
+		await page.goto(`${stack.baseUrl}/desk/growers${path}`);
+		await fits(page);
+	}
+	await page.goto(`${stack.baseUrl}/desk/growers?q=otter`);
+	await page.getByRole("link", { name: "Otter Slough Fruit" }).click();
+	await page.getByRole("link", { name: "Cambiar", exact: true }).click();
+	await page.getByRole("heading", { name: "Cambiar Otter Slough Fruit" }).waitFor();
+	await fits(page);
+	await page.fill("[name=name]", "");
+	await page.getByRole("button", { name: "Guardar" }).click();
+	await page.getByRole("alert").waitFor();
+	await fits(page);
+	await page.goto(`${stack.baseUrl}/desk/growers/duplicates`);
+	await page.getByRole("link", { name: /^Comparar Quail Bend/ }).click();
+	await page.getByRole("heading", { name: "Esta se queda" }).waitFor();
+	await fits(page);
+	await page.goto(`${stack.baseUrl}/desk/growers/import`);
+	await page.getByRole("link", { name: "lista.csv" }).click();
+	await page.getByRole("button", { name: "Pasar 1 productor a la lista" }).waitFor();
+	await fits(page);
+	expect(page.complaints.filter((complaint) => !complaint.includes("400 (Bad Request)"))).toEqual([]);
+	await page.context().close();
+});
