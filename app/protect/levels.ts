@@ -22,7 +22,8 @@ export interface OwnCell {
  * - a count: at least 1, so that another whole number is possible;
  * - a quantity that is 0 though owners answered (all was lost): p/100 of the mean owner in the nearest area or crop
  *   group that has any, upwards only. Where the whole table has none the zero is plain to see, and no level is asked.
- * @param keptBack cells that `guardRevision` keeps back, with the room that it asks for: the wider one counts.
+ * @param keptBack cells that `guardRevision` keeps back, with the room that it asks for: the wider one counts, and for a cell
+ *   without another reason this alone.
  */
 export function ownCells(
 	table: ProtectionTable,
@@ -31,13 +32,16 @@ export function ownCells(
 ): OwnCell[] {
 	const wholes = wholesOf(table);
 	return table.cells.flatMap((cell, index) => {
-		const reasons = ownReasons(cell, rules);
-		if (keptBack.has(cell.key) && cell.owners > 0) reasons.push("revision");
+		const kept = cell.owners > 0 ? keptBack.get(cell.key) : undefined;
+		const own = ownReasons(cell, rules);
+		const reasons: OwnReason[] = kept ? [...own, "revision"] : own;
 		if (reasons.length === 0) return [];
-		const few = reasons.includes("too_few_owners");
+		const few = own.includes("too_few_owners");
 		const levels = Object.fromEntries(
 			table.quantities.map((q) => {
-				const asked = Math.max(level(table, wholes, index, q, few, rules), keptBack.get(cell.key)?.[q.key] ?? 0);
+				// What was a shield before has no room of its own to keep.
+				const needed = own.length > 0 ? level(table, wholes, index, q, few, rules) : 0;
+				const asked = Math.max(needed, kept?.[q.key] ?? 0);
 				return [q.key, q.counted && asked > 0 ? Math.max(1, asked) : asked] as const;
 			}),
 		);
