@@ -1,9 +1,13 @@
 // A thread of its own, started by protect-thread.server.ts: plans, then does one order after the other.
+import { constants, setPriority } from "node:os";
 import { parentPort, workerData } from "node:worker_threads";
 import { chooseBlock } from "./choice.ts";
 import { concludeProtection, planProtection } from "./protect.ts";
 import { loadSolver } from "./solver.ts";
 import type { ThreadAnswer, ThreadOrder, ThreadStart } from "./thread-messages.ts";
+
+// Of this thread alone where the system counts by thread: pages on the same machine go first.
+setPriority(constants.priority.PRIORITY_LOW);
 
 const port = parentPort!;
 const tell = (answer: ThreadAnswer) => port.postMessage(answer);

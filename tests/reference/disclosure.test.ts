@@ -129,6 +129,7 @@ test.each(["value", "count"] as const)(
 			expect(found.bound).toBe(found.loss);
 		}
 	},
+	60_000,
 );
 
 test.each([...tables.map((name) => `${name}.json`), "published_examples.json", "large_county_category.csv"])(
