@@ -123,7 +123,7 @@ test("a file with errors is mended and read in, and the import undone", async ()
 	await press(page, "link", "mended.csv");
 	await press(page, "button", "Undo this import");
 	await press(page, "button", "Undo it");
-	await page.getByText("Undone", { exact: true }).waitFor();
+	await page.locator("dd", { hasText: "Undone" }).waitFor();
 	await page.goto(`${stack.baseUrl}/desk/growers?q=alder`);
 	expect(await page.locator("tbody tr").count()).toBe(0);
 });
