@@ -52,6 +52,10 @@ export async function computeReleaseDraft(
 	const cells = assembleCells({ method, frameCells: inputs.frameCells, shares, protection, estimates });
 	const audit = ReleaseAudit.parse({
 		...protection.audit,
+		byQuantity: protection.audit.byQuantity.map((one) => ({
+			...one,
+			label: inputs.quantityLabels.get(one.quantity),
+		})),
 		seconds,
 		gap: protection.loss && gapOf(protection.loss),
 	});
@@ -76,7 +80,8 @@ async function protectWatched(
 	if (shares.length <= FEW_CELLS) return protect(table, rules, { guard });
 	await using watch = watchDraft(releaseDraftId, transact);
 	try {
-		return await protectInThread(table, rules, { guard }, watch);
+		const revision = guard && { areas, cropKeys: method.cropKeys, earlier, holdings };
+		return await protectInThread(table, rules, { guard, revision }, watch);
 	} catch (error) {
 		if (!(error instanceof DraftNotWanted)) throw error;
 		log.info({ releaseDraftId }, "release draft not wanted any more");

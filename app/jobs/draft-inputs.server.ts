@@ -24,6 +24,8 @@ export type DraftInputs = {
 	frameCells: ReadonlySet<string>;
 	baseKeys: string[];
 	sensitive: SensitiveMeasures;
+	/** What the quantities of the table are called, by key; counts of answers have no name of their own. */
+	quantityLabels: ReadonlyMap<string, Words>;
 	shares: OwnerShares[];
 	holdings: Holding[];
 	/** Releases of the survey so far; a first one has none. */
@@ -83,6 +85,7 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 		frameCells: await listFrameCells(trx, surveyId),
 		baseKeys,
 		sensitive,
+		quantityLabels: new Map(definition.measures.map(({ key, label }) => [key.replace(/^base\./, ""), label])),
 		shares: await listOwnerShares(trx, {
 			surveyId,
 			baseKeys,

@@ -20,7 +20,7 @@ export interface RevisionAudit {
 	linearPrograms: number;
 }
 
-interface RevisionInput {
+export interface RevisionInput {
 	areas: AreaTree;
 	cropKeys: readonly string[];
 	/** Base quantities that add up over areas and crops. */

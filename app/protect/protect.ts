@@ -1,5 +1,7 @@
 import { auditPattern, type AuditResult } from "./audit.ts";
 import { type BlockChoice, chooseBlock, type ChoiceOptions, joinChoices, type Plan, planChoice } from "./choice.ts";
+import { auditRevision, type RevisionInput, withRevision } from "./audit-revision.ts";
+import type { Holding } from "./holdings.ts";
 import { harden } from "./harden.ts";
 import { ownCells } from "./levels.ts";
 import type { RevisionGuard } from "./revision.ts";
@@ -22,9 +24,11 @@ export interface CellDecision {
 	reasons: readonly (OwnReason | "shield")[];
 }
 
+type Pattern = ReadonlyMap<string, CellDecision>;
+
 export interface Protection {
 	/** By cell key, every cell of the table. */
-	pattern: ReadonlyMap<string, CellDecision>;
+	pattern: Pattern;
 	audit: AuditResult;
 	/** null where no choice protects every cell */
 	loss: ProvenLoss | null;
@@ -53,12 +57,14 @@ const STRICT: ChoiceOptions = { ownersAttack: true, grandTotal: "last_resort", o
 export interface ProtectOptions extends Partial<Omit<ChoiceOptions, "told">> {
 	/** Where earlier releases of the survey are public: what they keep back and what they tell. */
 	guard?: Pick<RevisionGuard, "keptBack" | "told">;
+	/** These releases, and the answers behind the draft: what it would show is then audited beside them. */
+	revision?: Pick<RevisionInput, "areas" | "cropKeys" | "earlier"> & { holdings: readonly Holding[] };
 	/** By quantity, keys of cells whose value other surveys' releases show. */
 	shownElsewhere?: ReadonlyMap<string, ReadonlySet<string>>;
 }
 
 /** What is to be decided, with the rules that its audit goes by. */
-export type ProtectionPlan = Plan & { rules: ProtectionRules };
+export type ProtectionPlan = Plan & { rules: ProtectionRules; revision: ProtectOptions["revision"] };
 
 /**
  * Decides for every cell of one survey whether it is shown, and audits the decision.
@@ -85,10 +91,10 @@ export function planProtection(
 	rules: ProtectionRules,
 	options: ProtectOptions,
 ): ProtectionPlan {
-	const { guard, shownElsewhere, ...shielding } = options;
+	const { guard, shownElsewhere, revision, ...shielding } = options;
 	const told = whatIsTold(table, rules, guard?.told, shownElsewhere);
 	const own = ownCells(table, checkRules(rules), guard?.keptBack);
-	return { ...planChoice(table, own, { ...STRICT, ...shielding, told }), rules };
+	return { ...planChoice(table, own, { ...STRICT, ...shielding, told }), rules, revision };
 }
 
 /** The last step: one pattern from the choices of all blocks, audited. */
@@ -125,7 +131,16 @@ export function concludeProtection(
 		lost: sumOver([...reasons.keys(), ...shields], plan.loss),
 		bound: choice.bound,
 	};
-	return { pattern, audit, loss };
+	return { pattern, audit: beside(solver, plan, audit, pattern), loss };
+}
+
+/** The audit, with what the draft tells beside earlier releases. */
+function beside(solver: Solver, { table, rules, revision }: ProtectionPlan, audit: AuditResult, pattern: Pattern) {
+	if (!revision || revision.earlier.length === 0) return audit;
+	const quantities = table.quantities.filter(({ overlapsOver }) => !overlapsOver).map(({ key }) => key);
+	const shown = new Set([...pattern].flatMap(([key, { status }]) => (status === "shown" ? [key] : [])));
+	const draft = { shown, holdings: revision.holdings };
+	return withRevision(audit, auditRevision(solver, { ...revision, quantities, rules, draft }));
 }
 
 /** What the guard and other releases name by key, by position. */

@@ -78,7 +78,11 @@ export const ReleaseAudit = z.object({
 	narrowest: z.number().nullable(),
 	widths: Widths,
 	// Told since a later day.
-	byQuantity: z.array(z.object({ quantity: z.string(), narrowest: z.number().nullable(), widths: Widths })).default([]),
+	byQuantity: z
+		.array(
+			z.object({ quantity: z.string(), label: Words.optional(), narrowest: z.number().nullable(), widths: Widths }),
+		)
+		.default([]),
 	attackers: z
 		.array(
 			z.object({

@@ -10,6 +10,7 @@ import { StatusBadge } from "#app/components/status-badge.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { FigureShape } from "#app/lib/format.ts";
+import { AuditTables, type AuditTablesProps } from "./audit-tables.tsx";
 
 type Words = { en: string; es: string };
 type ReportFigure = {
@@ -30,12 +31,11 @@ type ReportRow = {
 	figures: ReportFigure[];
 };
 export type DraftReportProps = {
-	audit: {
+	audit: AuditTablesProps["audit"] & {
 		passed: boolean;
 		cells: number;
 		withheldForOwnSake: number;
 		shields: number;
-		narrowest: number | null;
 		linearPrograms: number;
 		seconds: number;
 		gap: number | null;
@@ -61,6 +61,7 @@ export function DraftReport(props: DraftReportProps) {
 		<>
 			<Section title={t("audit.title")}>
 				<AuditFacts {...props} />
+				<AuditTables audit={props.audit} />
 			</Section>
 			<Section title={t("counts.title")}>
 				<CountTable counts={props.counts} />

@@ -21,6 +21,7 @@ import { Section } from "#app/components/section.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
 import { mendAddress } from "#app/directory/mail-address.server.ts";
 import { findOperation } from "#app/directory/operations.server.ts";
+import { findWaiver, recordWaiver } from "#app/directory/waiver.server.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { MergedNotice } from "./parts/merging/merged-notice.tsx";
@@ -30,6 +31,7 @@ import { People } from "./parts/growers/people.tsx";
 import { useGrowerName } from "./parts/grower-name.ts";
 import { PlantingTable } from "./parts/planting-table.tsx";
 import { SurveysOfGrower } from "./parts/surveys-of-grower.tsx";
+import { WaiverForm } from "./parts/waiver-form.tsx";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
@@ -39,6 +41,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		const { operationId } = operation;
 		return {
 			operation,
+			waiver: (await findWaiver(trx, desk.viewer, operationId)) ?? null,
 			surveys: await listOperationSurveys(trx, desk.viewer, operationId),
 			people: await listGrantees(trx, operationId),
 			contacts: await listContacts(trx, operationId),
@@ -52,9 +55,13 @@ const Step = z.discriminatedUnion("step", [
 	z.object({ step: z.literal("link"), surveyId: z.guid(), wave: z.coerce.number().int().min(1) }),
 	ContactForm.extend({ step: z.literal("contact") }),
 	z.object({ step: z.literal("address"), email: z.email("email_wrong").max(254, "too_long").optional() }),
+	z.object({ step: z.enum(["allow", "disallow"]) }),
 ]);
 
-/** Sends a new personal link for one survey, which ends the links sent before; or mends the address that mail goes to. */
+/**
+ * Sends a new personal link for one survey, which ends the links sent before; mends the address that mail goes to; or records
+ * whether the owner allows publication.
+ */
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
 	const form = parseForm(Step, await request.formData());
@@ -66,9 +73,10 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const { operationId } = params;
 	const outcome = await desk.transaction(async (trx) => {
 		if (step.step === "contact") return noteContact(trx, desk.viewer, operationId, step);
-		return step.step === "link"
-			? sendNewLink(trx, desk.viewer, step.surveyId, operationId, step.wave)
-			: mend(trx, desk.viewer, operationId, step.email ?? null);
+		if (step.step === "link") return sendNewLink(trx, desk.viewer, step.surveyId, operationId, step.wave);
+		if (step.step === "address") return mend(trx, desk.viewer, operationId, step.email ?? null);
+		const recorded = await recordWaiver(trx, desk.viewer, operationId, step.step === "allow");
+		return recorded === "not_found" ? recorded : { waiver: step.step };
 	});
 	if (outcome === "not_found") throw refusal("operation_not_found");
 	if (outcome === "noted") {
@@ -76,12 +84,15 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 		return redirect(href("/desk/growers/:operationId", params), 303);
 	}
 	if (typeof outcome === "string") return data({ refused: outcome, values: undefined, problems: [] }, { status: 409 });
-	const toast =
-		"name" in outcome
-			? { key: "desk:grower.linkSent", values: { name: outcome.name } }
-			: { key: "desk:grower.address.saved" };
-	context.get(sessionContext).flash("toast", toast);
+	context.get(sessionContext).flash("toast", toastOf(outcome));
 	return redirect(href("/desk/growers/:operationId", params), 303);
+}
+
+function toastOf(outcome: { name: string } | { waiver: "allow" | "disallow" } | { mended: string }) {
+	if ("name" in outcome) return { key: "desk:grower.linkSent", values: { name: outcome.name } };
+	if ("waiver" in outcome)
+		return { key: `desk:grower.waiver.${outcome.waiver === "allow" ? "recorded" : "withdrawn"}` };
+	return { key: "desk:grower.address.saved" };
 }
 
 async function mend(trx: Trx, viewer: Associate, operationId: string, email: string | null) {
@@ -92,7 +103,7 @@ async function mend(trx: Trx, viewer: Associate, operationId: string, email: str
 }
 
 export default function GrowerPage({ loaderData, actionData }: Route.ComponentProps) {
-	const { operation, surveys, people, contacts } = loaderData;
+	const { operation, surveys, people, contacts, waiver } = loaderData;
 	const { t } = useTranslation("desk");
 	const sent = actionData?.values?.step;
 	const ofContact = sent === "contact" ? { values: actionData?.values, problems: actionData?.problems } : {};
@@ -125,6 +136,7 @@ export default function GrowerPage({ loaderData, actionData }: Route.ComponentPr
 			{operation.status === "active" && (
 				<AddressForm email={operation.email} returned={operation.mailReturnedAt !== null} {...ofAddress} />
 			)}
+			{operation.status === "active" && <WaiverForm waiver={waiver} ownerName={operation.ownerName} />}
 			<Section title={t("grower.plantings")}>
 				<PlantingTable plantings={operation.plantings} />
 			</Section>
