@@ -108,10 +108,10 @@ export function concludeProtection(
 	watch("joining");
 	const choice = joinChoices(solver, plan, choices);
 	const reasons = new Map(own.map((cell) => [cell.index, cell.reasons]));
-	const everything = () =>
-		table.cells.flatMap((cell, index) => (cell.owners > 0 && !reasons.has(index) ? [index] : []));
 	watch("auditing");
-	const { shields, audit } = harden(choice?.shields ?? new Set(everything()), {
+	// Where the chooser, which asks for a little more than the audit, finds nothing, own cells alone may do: so it is where a
+	// revision tells the same again. What does not do is hardened, up to withholding everything.
+	const { shields, audit } = harden(choice?.shields ?? new Set(), {
 		table,
 		rules,
 		own,
@@ -126,11 +126,10 @@ export function concludeProtection(
 			return [cell.key, { status: why.length > 0 ? "withheld" : "shown", reasons: why }];
 		}),
 	);
-	const loss = choice && {
-		objective: options.objective,
-		lost: sumOver([...reasons.keys(), ...shields], plan.loss),
-		bound: choice.bound,
-	};
+	const lost = sumOver([...reasons.keys(), ...shields], plan.loss);
+	// No pattern loses less than that of the own cells alone.
+	const bound = choice?.bound ?? (shields.size === 0 ? lost : null);
+	const loss = bound === null ? null : { objective: options.objective, lost, bound };
 	return { pattern, audit: beside(solver, plan, audit, pattern), loss };
 }
 

@@ -81,6 +81,21 @@ describe.each(tables)("%s", (name) => {
 		},
 	);
 
+	test("told again with the same answers, it shows what it showed", async () => {
+		const stored = await readStored(`${folder}${name}.json`);
+		const { table } = tableOf(stored);
+		const first = await protect(table, rulesOf(stored.rule));
+		const keys = (status: string) => [...first.pattern].flatMap(([key, cell]) => (cell.status === status ? [key] : []));
+		const guard = {
+			keptBack: new Map(keys("withheld").map((key) => [key, { [VALUE]: 0 }] as const)),
+			told: new Set(keys("shown")),
+		};
+		const { pattern, audit } = await protect(table, rulesOf(stored.rule), { guard });
+		const statuses = (of: typeof pattern) => [...of].map(([key, { status }]) => `${key} ${status}`);
+		expect(audit).toMatchObject({ passed: true, shields: 0 });
+		expect(statuses(pattern)).toEqual(statuses(first.pattern));
+	});
+
 	test("shields hold against owners who know a cell alone", async () => {
 		const stored = await readStored(`${folder}${name}.json`);
 		const { audit } = await protect(tableOf(stored).table, rulesOf(stored.rule));
