@@ -123,11 +123,13 @@ test("a closed survey waits for its release until one is approved, and only in i
 	await owner.query("update collect.survey set closed_at = now() where survey_id = $1", [surveyId]);
 	expect(await work(iowa)).toBe("none");
 	await draft("superseded");
-	await draft("audited");
+	await draft("cancelled");
+	expect(await work(iowa)).toBe("none");
+	await draft("audited", '{"passed": true}');
 	expect([await work(iowa), await work(wisconsin)]).toEqual(["audited", "audited"]);
 	await owner.query("delete from collect.survey_state where survey_id = $1 and state_fips = '55'", [surveyId]);
 	expect(await work(wisconsin)).toBeUndefined();
-	expect(await count(owner, "collect.release_draft where survey_id = $1", [surveyId])).toBe(2);
+	expect(await count(owner, "collect.release_draft where survey_id = $1", [surveyId])).toBe(3);
 	await draft("approved", '{"passed": true}');
 	expect(await work(iowa)).toBeUndefined();
 });

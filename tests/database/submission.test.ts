@@ -98,7 +98,7 @@ describe("sending in", () => {
 		expect(await leftBy(place.surveyId)).toEqual({
 			submissions: 1,
 			complete: 1,
-			facts: 20,
+			facts: 26,
 			mailings: ["receipt 1"],
 			jobs: before.jobs + 1,
 		});
@@ -199,7 +199,9 @@ describe("sending in", () => {
 		expect(rows.map((row) => row.measure_key)).toEqual([
 			"base.harvested_lb",
 			"crop_loss",
+			"first_harvest",
 			"freeze_loss",
+			"last_harvest",
 			"total_loss",
 			"yield_per_tree",
 		]);
