@@ -2,7 +2,7 @@ import { sql } from "kysely";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import { estimateSurvey } from "#app/estimate/survey.ts";
 import { log } from "#app/lib/log.server.ts";
-import { protect, type Protection, type ProtectionTable } from "#app/protect/protect.ts";
+import { protect, type Protection, type ProtectionTable, type ProtectOptions } from "#app/protect/protect.ts";
 import { protectInThread } from "#app/protect/protect-thread.server.ts";
 import { guardRevision } from "#app/protect/revision.ts";
 import { surveyTable } from "#app/protect/survey-table.ts";
@@ -70,23 +70,32 @@ export async function computeReleaseDraft(
 async function protectWatched(
 	releaseDraftId: string,
 	table: ProtectionTable,
-	{ rules, method, shares, earlier, holdings }: DraftInputs,
+	inputs: DraftInputs,
 	transact: typeof scopedTransaction,
 ): Promise<Protection | undefined> {
-	const quantities = table.quantities.map(({ key }) => key);
-	const areas = treeOf(method.areas);
-	const guard = earlier.length > 0 ? guardRevision({ areas, quantities, rules, earlier, holdings }) : undefined;
+	const { rules, shares } = inputs;
+	const options = whatIsPublic(table, inputs);
 	// Such a table is done before a thread of its own would have begun.
-	if (shares.length <= FEW_CELLS) return protect(table, rules, { guard });
+	if (shares.length <= FEW_CELLS) return protect(table, rules, options);
 	await using watch = watchDraft(releaseDraftId, transact);
 	try {
-		const revision = guard && { areas, cropKeys: method.cropKeys, earlier, holdings };
-		return await protectInThread(table, rules, { guard, revision }, watch);
+		return await protectInThread(table, rules, options, watch);
 	} catch (error) {
 		if (!(error instanceof DraftNotWanted)) throw error;
 		log.info({ releaseDraftId }, "release draft not wanted any more");
 		return undefined;
 	}
+}
+
+/** What the releases before tell, which this one is held against. */
+function whatIsPublic(table: ProtectionTable, { rules, method, earlier, holdings }: DraftInputs): ProtectOptions {
+	if (earlier.length === 0) return {};
+	const areas = treeOf(method.areas);
+	const quantities = table.quantities.map(({ key }) => key);
+	return {
+		guard: guardRevision({ areas, quantities, rules, earlier, holdings }),
+		revision: { areas, cropKeys: method.cropKeys, earlier, holdings },
+	};
 }
 
 function treeOf(areas: ReleaseMethod["areas"]): { areaKey: string; parentKey: string }[] {

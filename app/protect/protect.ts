@@ -59,7 +59,10 @@ export interface ProtectOptions extends Partial<Omit<ChoiceOptions, "told">> {
 	guard?: Pick<RevisionGuard, "keptBack" | "told">;
 	/** These releases, and the answers behind the draft: what it would show is then audited beside them. */
 	revision?: Pick<RevisionInput, "areas" | "cropKeys" | "earlier"> & { holdings: readonly Holding[] };
-	/** By quantity, keys of cells whose value other surveys' releases show. */
+	/**
+	 * By quantity, keys of cells whose value other surveys' releases show: see `sharedCells`. What these leave of a cell's
+	 * room may be less than its level, and then no choice passes.
+	 */
 	shownElsewhere?: ReadonlyMap<string, ReadonlySet<string>>;
 }
 
