@@ -131,7 +131,7 @@ async function closeAndDraft(associate: Visitor, survey: string): Promise<void> 
 async function approve(coordinator: Visitor): Promise<void> {
 	await coordinator.goto(`${stack.baseUrl}/network/releases`);
 	await coordinator.getByRole("link", { name: /After harvest/ }).click();
-	await coordinator.getByRole("button", { name: "Approve and publish" }).click();
+	await coordinator.getByRole("button", { name: "Publish at once" }).click();
 	await coordinator.getByRole("dialog").getByRole("button", { name: "Publish", exact: true }).click();
 	await coordinator.getByText("Release 1 is published.").waitFor();
 }
