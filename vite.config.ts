@@ -12,7 +12,8 @@ export default defineConfig({
 				extends: true,
 				test: {
 					name: "unit",
-					maxWorkers: "100%",
+					// Pure functions: no file leaves anything behind that another could meet.
+					isolate: false,
 					include: [
 						"app/**/*.test.{ts,tsx}",
 						"db/**/*.test.ts",
@@ -26,7 +27,6 @@ export default defineConfig({
 				extends: true,
 				test: {
 					name: "database",
-					maxWorkers: "100%",
 					include: ["tests/database/**/*.test.ts", "tests/walls/**/*.test.ts"],
 					expect: { poll: { timeout: 20_000 } },
 					testTimeout: 60_000,
@@ -42,8 +42,8 @@ export default defineConfig({
 					expect: { poll: { timeout: 20_000 } },
 					testTimeout: 300_000,
 					hookTimeout: 300_000,
-					// Each file has a whole product of its own: two at once fill two cores, more would wait for each other.
-					maxWorkers: 2,
+					// Each file has a whole product of its own, which fills two cores by itself.
+					fileParallelism: false,
 					sequence: { groupOrder: 1 },
 				},
 			},

@@ -20,10 +20,12 @@ const FEW_CELLS = 40;
  * Makes a draft's cells: tally, estimate, protect, audit. Reading and writing are two short transactions, with the long
  * computation between them; a draft that was superseded meanwhile is left as it is.
  * @param transact runs both; the demo's data passes one that stays in a transaction of its own.
+ * @param limits of the search for shields of least loss; the demo's data takes what is found soon, audited like any other.
  */
 export async function computeReleaseDraft(
 	{ releaseDraftId }: { releaseDraftId: string },
 	transact: typeof scopedTransaction = scopedTransaction,
+	limits?: ProtectOptions["limits"],
 ): Promise<void> {
 	const inputs = await transact({ kind: "network" }, (trx) => readInputs(trx, releaseDraftId), "repeatable read");
 	if (!inputs) return;
@@ -39,7 +41,7 @@ export async function computeReleaseDraft(
 		sensitiveKeys: inputs.sensitive.counted,
 		holdings: inputs.holdings,
 	});
-	const protection = await protectWatched(releaseDraftId, table, inputs, transact);
+	const protection = await protectWatched(releaseDraftId, table, inputs, { transact, limits });
 	if (!protection) return;
 	const seconds = (performance.now() - started) / 1000;
 	const { estimates, joins } = estimateSurvey({
@@ -71,10 +73,10 @@ async function protectWatched(
 	releaseDraftId: string,
 	table: ProtectionTable,
 	inputs: DraftInputs,
-	transact: typeof scopedTransaction,
+	{ transact, limits }: { transact: typeof scopedTransaction; limits: ProtectOptions["limits"] },
 ): Promise<Protection | undefined> {
 	const { rules, shares } = inputs;
-	const options = whatIsPublic(table, inputs);
+	const options = { ...whatIsPublic(table, inputs), limits };
 	// Such a table is done before a thread of its own would have begun.
 	if (shares.length <= FEW_CELLS) return protect(table, rules, options);
 	await using watch = watchDraft(releaseDraftId, transact);
