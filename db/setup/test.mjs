@@ -13,7 +13,13 @@ import { step, Stop, tell } from "./steps.mjs";
 import { addCounts, countResults, summary } from "./test-counts.mjs";
 
 const extra = process.argv.slice(2);
-const results = join(local, "test-results.json");
+/** Side by side: the browser's tests wait a good part of their time, and the others fill it. */
+const parts = extra.length
+	? [{ title: "Tests", args: extra }]
+	: [
+			{ title: "Tests of code and database", args: ["--project", "unit", "--project", "database"] },
+			{ title: "Tests in the browser", args: ["--project", "browser"] },
+		];
 
 // Set by those who run the product against real services; no test may reach those.
 const kept = ([name]) =>
@@ -74,14 +80,15 @@ async function prepare() {
 	};
 }
 
-async function runTests(env) {
+async function runTests(env, { title, args: chosen }, index) {
+	const results = join(local, `test-results-${index}.json`);
 	rmSync(results, { force: true });
 	let code;
 	await step(
-		"Tests",
+		title,
 		async () => {
 			const reporters = ["--reporter=default", "--reporter=json", `--outputFile.json=${results}`];
-			const args = ["node_modules/vitest/vitest.mjs", "run", ...reporters, ...extra];
+			const args = ["node_modules/vitest/vitest.mjs", "run", ...reporters, ...chosen];
 			({ code } = await run(process.execPath, args, { env, streams: true, mayFail: true, sweeps: true }));
 			return code === 0 ? "passed" : "failed";
 		},
@@ -94,15 +101,16 @@ async function testAll() {
 	const env = await prepare();
 	const counts = [];
 	// With arguments for the test runner, somebody wants certain tests only.
+	const build = await check("Build", ensureBuild);
+	if (!extra.length || build.failed) counts.push(build);
+	const running = parts.map((part, index) => runTests(env, part, index));
 	if (extra.length) console.log("\nOnly the tests asked for: types, lint and format are left out.");
 	else {
 		counts.push(await check("Types", npmScript("types")));
 		counts.push(await check("Lint", npmScript("lint")));
 		counts.push(await check("Format", npmScript("format:check")));
 	}
-	const build = await check("Build", ensureBuild);
-	if (!extra.length || build.failed) counts.push(build);
-	const tests = await runTests(env);
+	const tests = addCounts(await Promise.all(running));
 	if (tests.passed + tests.failed === 0) {
 		console.error("No test was run, which counts as a failure.");
 		tests.failed = 1;
