@@ -1,6 +1,7 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import type { SizeClass } from "./frame.ts";
 import type { Disposition } from "./frame-list.server.ts";
 
 export type DispositionCount = { disposition: Disposition; operations: number; bearingTrees: number };
@@ -34,4 +35,53 @@ export async function countDispositions(
 		])
 		.execute();
 	return rows.map((row) => ({ ...row, disposition: row.disposition as Disposition }));
+}
+
+/** Operations of one state, district and stratum that share a disposition; several such rows make any larger part. */
+export type OutcomeRow = DispositionCount & {
+	stateFips: string;
+	/** Null for counties of no district. */
+	districtKey: string | null;
+	districtName: string | null;
+	sizeClass: SizeClass;
+};
+
+/**
+ * What became of all operations of a survey's frame in the viewer's states, by state, district and size class: some hundreds
+ * of rows, from which any part is summed. The district is that of the frozen county.
+ */
+export async function listOutcomes(
+	trx: Trx,
+	viewer: Associate,
+	surveyId: string,
+	cropKey: string,
+): Promise<OutcomeRow[]> {
+	return trx
+		.with("trees", (db) =>
+			db
+				.selectFrom("collect.frame_crop")
+				.where("survey_id", "=", surveyId)
+				.$if(cropKey !== "all", (rows) => rows.where("crop_key", "=", cropKey))
+				.groupBy("operation_id")
+				.select(["operation_id", sql<number>`sum(bearing_trees)::float8`.as("bearing_trees")]),
+		)
+		.selectFrom("collect.frame_operation as f")
+		.innerJoin("trees as t", "t.operation_id", "f.operation_id")
+		.innerJoin("directory.county as c", "c.county_fips", "f.county_fips")
+		.leftJoin("directory.district as d", "d.district_key", "c.district_key")
+		.where("f.survey_id", "=", surveyId)
+		.where("f.state_fips", "in", viewer.stateFips)
+		.groupBy(["f.state_fips", "c.district_key", "d.name", "f.size_class", "f.disposition"])
+		.orderBy("f.state_fips")
+		.orderBy("d.name")
+		.orderBy(sql`array_position(array['small', 'medium', 'large'], f.size_class)`)
+		.orderBy("f.disposition")
+		.select(["f.state_fips as stateFips", "c.district_key as districtKey", "d.name as districtName"])
+		.select([
+			sql<SizeClass>`f.size_class`.as("sizeClass"),
+			sql<Disposition>`f.disposition`.as("disposition"),
+			sql<number>`count(*)::int`.as("operations"),
+			sql<number>`sum(t.bearing_trees)::float8`.as("bearingTrees"),
+		])
+		.execute();
 }

@@ -64,7 +64,7 @@ export function responseRates(outcomes: Outcomes, eligibleShare?: number): Respo
  * back, has given no sign that it still grows the crop. Answers begun and not sent in are no answer, so that they count
  * with those who broke off.
  */
-const outcomeOf: Record<Disposition, keyof Outcomes> = {
+export const outcomeOf: Record<Disposition, keyof Outcomes> = {
 	complete: "complete",
 	partial: "refused",
 	refused: "refused",

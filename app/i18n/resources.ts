@@ -1,3 +1,4 @@
+import enAnswered from "#locales/en/answered.json" with { type: "json" };
 import enCommon from "#locales/en/common.json" with { type: "json" };
 import enDataroom from "#locales/en/dataroom.json" with { type: "json" };
 import enDesk from "#locales/en/desk.json" with { type: "json" };
@@ -8,6 +9,7 @@ import enNetwork from "#locales/en/network.json" with { type: "json" };
 import enOrchard from "#locales/en/orchard.json" with { type: "json" };
 import enPublic from "#locales/en/public.json" with { type: "json" };
 import enRelease from "#locales/en/release.json" with { type: "json" };
+import esAnswered from "#locales/es/answered.json" with { type: "json" };
 import esCommon from "#locales/es/common.json" with { type: "json" };
 import esDataroom from "#locales/es/dataroom.json" with { type: "json" };
 import esDesk from "#locales/es/desk.json" with { type: "json" };
@@ -22,6 +24,7 @@ import esRelease from "#locales/es/release.json" with { type: "json" };
 /** All words of the product, for the server. A browser loads one language only (`load-language.client.ts`). */
 export const resources = {
 	en: {
+		answered: enAnswered,
 		common: enCommon,
 		dataroom: enDataroom,
 		desk: enDesk,
@@ -34,6 +37,7 @@ export const resources = {
 		release: enRelease,
 	},
 	es: {
+		answered: esAnswered,
 		common: esCommon,
 		dataroom: esDataroom,
 		desk: esDesk,
