@@ -100,6 +100,62 @@ export interface CollectContact {
   way: string;
 }
 
+export interface CollectCorrection {
+  act: string;
+  answer: Json | null;
+  correction_id: Generated<string>;
+  edit_finding_id: string | null;
+  made_at: Generated<Timestamp>;
+  made_by: string;
+  number: Generated<number>;
+  planting_id: string | null;
+  question_key: string;
+  reason: Generated<string>;
+  response_id: string;
+  was: Json;
+}
+
+export interface CollectEditFinding {
+  about: Json;
+  about_key: string;
+  check_key: string;
+  check_kind: string;
+  closed_at: Timestamp | null;
+  closed_by: string | null;
+  crop_key: string | null;
+  edit_finding_id: Generated<string>;
+  effect: number | null;
+  made_at: Generated<Timestamp>;
+  moved: Json | null;
+  outcome: string | null;
+  planting_id: string | null;
+  question_key: string;
+  response_id: string;
+  told: Generated<Json>;
+  version: Generated<number>;
+}
+
+export interface CollectEditFindingStep {
+  at: Generated<Timestamp>;
+  batch_id: string | null;
+  edit_finding_id: string;
+  number: Generated<number>;
+  person_id: string | null;
+  step: string;
+  words: Generated<string>;
+}
+
+export interface CollectEditQuestion {
+  asked_at: Generated<Timestamp>;
+  asked_by: string;
+  edit_finding_id: string;
+  expires_at: Timestamp;
+  mailing_id: string;
+  replied_at: Timestamp | null;
+  reply: string | null;
+  token_hash: string | null;
+}
+
 export interface CollectFact {
   county_fips: string;
   crop_key: string;
@@ -564,6 +620,10 @@ export interface DB {
   "auth.tries": AuthTries;
   "collect.answer": CollectAnswer;
   "collect.contact": CollectContact;
+  "collect.correction": CollectCorrection;
+  "collect.edit_finding": CollectEditFinding;
+  "collect.edit_finding_step": CollectEditFindingStep;
+  "collect.edit_question": CollectEditQuestion;
   "collect.fact": CollectFact;
   "collect.form": CollectForm;
   "collect.form_version": CollectFormVersion;

@@ -96,13 +96,18 @@ export function sameAnswers(one: Answer[], other: Answer[]): boolean {
 	return isDeepStrictEqual(answersByPlace(one), answersByPlace(other));
 }
 
-/** The newest of what was sent in and not withdrawn since. */
-export async function findNewestSubmission(trx: Trx, responseId: string): Promise<Submission | undefined> {
+/** The newest of what was sent in and not withdrawn since; `counted` leaves out what came late. */
+export async function findNewestSubmission(
+	trx: Trx,
+	responseId: string,
+	which: "any" | "counted" = "any",
+): Promise<Submission | undefined> {
 	const row = await trx
 		.selectFrom("collect.submission")
 		.select("answers")
 		.where("response_id", "=", responseId)
 		.where("withdrawn_at", "is", null)
+		.$if(which === "counted", (rows) => rows.where("late", "=", false))
 		.orderBy("version", "desc")
 		.limit(1)
 		.executeTakeFirst();

@@ -84,7 +84,16 @@ export const Question = z.discriminatedUnion("type", [
 		/** `score` is what a measure counts an option as; either all options have one or none. */
 		options: z.array(z.object({ key: Key, text: Words, score: z.number().optional() })).min(2),
 	}),
-	z.object({ ...questionBase, type: z.literal("short_text"), maxLength: z.number().int().default(200) }),
+	z.object({
+		...questionBase,
+		type: z.literal("short_text"),
+		maxLength: z.number().int().default(200),
+		/**
+		 * What the words are counted as once an associate has given them a code: the share told for `moves` goes to one of `to`,
+		 * or options of the question `adds` are counted as chosen.
+		 */
+		codes: z.union([z.object({ moves: Key, to: z.array(Key).min(1) }), z.object({ adds: Key })]).optional(),
+	}),
 	z.object({ ...questionBase, type: z.literal("long_text"), maxLength: z.number().int().default(5000) }),
 	/** Up to five pictures, of the whole operation: each is kept when it arrives, so that it stands alone on its screen. */
 	z.object({ ...questionBase, type: z.literal("photo"), required: z.literal(false) }),

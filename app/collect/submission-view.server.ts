@@ -39,7 +39,7 @@ export async function viewSubmissions(
 		questions.filter(({ type }) => type === "photo").map(({ key }) => key),
 	);
 	const answers = await withoutErased(trx, responseId, submission.answers, photoKeys);
-	return { ...view, groups: listAnswerLines(definition, await listPlantings(trx, submission), answers) };
+	return { ...view, groups: listAnswerLines(definition, await listPlantingsSent(trx, submission), answers) };
 }
 
 async function getSubmission(trx: Trx, responseId: string, version: number): Promise<Submission> {
@@ -53,7 +53,7 @@ async function getSubmission(trx: Trx, responseId: string, version: number): Pro
 }
 
 /** The plantings that were asked about then, with the crops they had, also those taken out since; none planted later. */
-async function listPlantings(trx: Trx, { plantings }: Submission): Promise<PlantingAsked[]> {
+export async function listPlantingsSent(trx: Trx, { plantings }: Submission): Promise<PlantingAsked[]> {
 	const ids = plantings.map(({ plantingId }) => plantingId);
 	const rows = await trx
 		.selectFrom("directory.planting")

@@ -3,6 +3,7 @@ import { sql } from "kysely";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
+import { queueJob } from "#app/jobs/queue.server.ts";
 import { writeFacts } from "#app/tally/facts.server.ts";
 import { findNewestSubmission, sameAnswers, type Submission } from "./answer-rows.server.ts";
 import type { Answer } from "./form.ts";
@@ -68,6 +69,7 @@ async function countIn(trx: Trx, { surveyId, operationId }: AnswerPlace, respons
 		.where("disposition", "!=", "complete")
 		.execute();
 	await writeFacts(trx, responseId);
+	await queueJob(trx, "check_answers", { surveyId, responseId }, { jobKey: `check_answers:${responseId}` });
 }
 
 async function keepSubmission(

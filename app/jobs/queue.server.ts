@@ -17,6 +17,10 @@ export type JobPayloads = {
 	/** One step of reading a list of growers in from a file. */
 	import_growers: { importId: string; step: "read" | "check" | "write" | "undo" };
 	sweep_imports: Record<string, unknown>;
+	/** Looks for odd answers in one response, or in all of a survey. */
+	check_answers: { surveyId: string; responseId: string | null };
+	/** Every survey that is out or was lately: what is usual among neighbours changes as more of them answer. */
+	check_surveys: Record<string, unknown>;
 };
 
 /** Queues work in the caller's transaction: neither the decision nor its job happens without the other. */

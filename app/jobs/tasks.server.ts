@@ -2,6 +2,7 @@ import type { Task } from "graphile-worker";
 import { z } from "zod";
 import { languages } from "#app/i18n/language.ts";
 import { letterKinds } from "#app/mail/templates.ts";
+import { checkAnswers, checkSurveys } from "./check-answers.server.ts";
 import { computeReleaseDraft } from "./compute-release-draft.server.ts";
 import { importGrowers, sweepImports } from "./import-growers.server.ts";
 import { erasePhotoFiles, sweepPhotos } from "./photos.server.ts";
@@ -37,8 +38,11 @@ export const tasks: Record<keyof JobPayloads, Task> = {
 		importGrowers,
 	),
 	sweep_imports: task(z.looseObject({}), sweepImports),
+	check_answers: task(z.object({ surveyId: z.uuid(), responseId: z.uuid().nullable() }), checkAnswers),
+	check_surveys: task(z.looseObject({}), checkSurveys),
 };
 
 /** What comes round by itself: the minute and hour in UTC. */
 export const crontab = `40 9 * * * sweep_photos ?max=1&fill=1d
-50 9 * * * sweep_imports ?max=1&fill=1d`;
+50 9 * * * sweep_imports ?max=1&fill=1d
+15 10 * * * check_surveys ?max=1&fill=1d`;

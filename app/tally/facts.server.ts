@@ -2,14 +2,18 @@ import type { Insertable, Transaction } from "kysely";
 import type { DB } from "#db/schema.ts";
 import type { Submission } from "#app/collect/answer-rows.server.ts";
 import type { FormDefinition } from "#app/collect/form.ts";
+import { listCorrections } from "#app/review/corrections.server.ts";
+import { type Correction, restsOnSetAside, reviewAnswers } from "#app/review/reviewed-answers.ts";
 import { type Fact, factsOf, type SubmittedResponse, type Unanswered, unansweredOf } from "./facts.ts";
 
 type FactRow = { measure_key: string; crop_key: string; y: number | null; x: number | null; is_day: boolean };
+type ReviewedRow = FactRow & { set_aside: boolean };
 
 /**
- * Brings the facts of one response to its newest submission, under the owner, county, state and stratum of the frozen
- * frame. What review set aside stays so while its figures are the same; new figures are judged anew. A response that was
- * never sent in has no facts, nor one that was withdrawn or came after the closing. The caller holds the response locked.
+ * Brings the facts of one response to its newest submission as review left it, under the owner, county, state and stratum
+ * of the frozen frame. What review decided of an answer holds while the grower says the same; another answer is judged
+ * anew. A response that was never sent in has no facts, nor one that was withdrawn or came after the closing. The caller
+ * holds the response locked.
  */
 export async function writeFacts(trx: Transaction<DB>, responseId: string): Promise<void> {
 	const sent = await trx
@@ -30,12 +34,13 @@ export async function writeFacts(trx: Transaction<DB>, responseId: string): Prom
 		.executeTakeFirst();
 	if (!sent) return;
 	const { answers: submission, definition, ...frame } = sent;
-	const wanted = factRows(definition as FormDefinition, submission as Submission);
+	const corrections = await listCorrections(trx, responseId);
+	const wanted = reviewedRows(definition as FormDefinition, submission as Submission, corrections);
 	const held = await trx
 		.selectFrom("collect.fact")
 		.where("survey_id", "=", frame.survey_id)
 		.where("operation_id", "=", frame.operation_id)
-		.select(["measure_key", "crop_key", "y", "x", "is_day"])
+		.select(["measure_key", "crop_key", "y", "x", "is_day", "set_aside"])
 		.execute();
 	await dropFacts(trx, frame, held.filter(without(wanted, cellOf)));
 	await putFacts(
@@ -60,6 +65,20 @@ export function factRows(definition: FormDefinition, response: SubmittedResponse
 		y,
 		x,
 		is_day: days.has(measureKey),
+	}));
+}
+
+/** The facts of a submission as review left it; those that rest on an answer that was set aside say so. */
+export function reviewedRows(
+	definition: FormDefinition,
+	submission: Submission,
+	corrections: readonly Correction[],
+): ReviewedRow[] {
+	const { answers, setAside } = reviewAnswers(definition, submission.answers, corrections);
+	const isSetAside = restsOnSetAside(definition, submission.plantings, setAside);
+	return factRows(definition, { ...submission, answers }).map((row) => ({
+		...row,
+		set_aside: isSetAside({ measureKey: row.measure_key, cropKey: row.crop_key }),
 	}));
 }
 
@@ -88,7 +107,7 @@ async function putFacts(trx: Transaction<DB>, facts: Insertable<DB["collect.fact
 				y: eb.ref("excluded.y"),
 				x: eb.ref("excluded.x"),
 				is_day: eb.ref("excluded.is_day"),
-				set_aside: false,
+				set_aside: eb.ref("excluded.set_aside"),
 			})),
 		)
 		.execute();
@@ -104,6 +123,6 @@ function cellOf({ measure_key, crop_key }: FactRow): string {
 	return `${measure_key} ${crop_key}`;
 }
 
-function rowOf(fact: FactRow): string {
-	return [cellOf(fact), fact.y, fact.x, fact.is_day].join(" ");
+function rowOf(fact: ReviewedRow): string {
+	return [cellOf(fact), fact.y, fact.x, fact.is_day, fact.set_aside].join(" ");
 }

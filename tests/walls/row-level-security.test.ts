@@ -49,6 +49,11 @@ const guarded: Record<string, Guarded> = {
 	"collect.answer": { key: "response_id", desk: all, grower: all },
 	"collect.submission": { key: "response_id", desk: ["insert"], grower: ["insert"] },
 	"collect.photo": { key: "response_id", desk: ["insert", "delete"], grower: ["insert", "delete"] },
+	// What is odd and what was decided is written once; only words go when a grower leaves.
+	"collect.edit_finding": { key: "response_id", desk: ["insert"], grower: ["insert"] },
+	"collect.edit_finding_step": { key: "edit_finding_id", desk: ["insert"], grower: ["insert"] },
+	"collect.edit_question": { key: "edit_finding_id", desk: ["insert"], grower: ["insert"] },
+	"collect.correction": { key: "response_id", desk: ["insert"], grower: ["insert"] },
 	"collect.fact": { key: "operation_id", state: "state_fips", desk: all, grower: all },
 	"collect.tally": { key: "measure_key", state: "state_fips", desk: all, grower: "nothing", deskReads: true },
 	// A draft covers the network and holds figures of shown cells alone: every desk's, and no grower's.

@@ -6,6 +6,7 @@ export type Holder = {
 	operation_id: string;
 	owner_id: string;
 	response_id: string;
+	edit_finding_id: string;
 	release_draft_id: string;
 	import_id: string;
 	/** Of a measure that nobody else has facts of, so that its tally is this operation's alone. */
@@ -31,7 +32,7 @@ export async function fillWithHolders(owner: Client): Promise<Holders> {
 		"insert into collect.release_draft_cell (release_draft_id, crop_key, area_key, status) values ($1, 'apple', '19103', 'withheld')",
 		[draftId],
 	);
-	const add = async (state: "19" | "55") => addHolder(owner, surveyId, draftId, state);
+	const add = async (state: "19" | "55") => addHolder(owner, { surveyId, draftId, personId }, state);
 	const [iowa, neighbor, wisconsin] = [await add("19"), await add("19"), await add("55")];
 	const work = async (holder: Row, state: string, other: Row) => ({
 		...holder,
@@ -76,7 +77,9 @@ async function addListWork(owner: Client, personId: string, state: string, opera
 	return importId;
 }
 
-async function addHolder(owner: Client, surveyId: string, draftId: string, state: "19" | "55"): Promise<Row> {
+type Shared = { surveyId: string; draftId: string; personId: string };
+
+async function addHolder(owner: Client, { surveyId, draftId, personId }: Shared, state: "19" | "55"): Promise<Row> {
 	const operationId = await addOperation(owner, { state });
 	const ownerId = await idOf(owner, "select owner_id as id from directory.operation where operation_id = $1", [
 		operationId,
@@ -90,7 +93,11 @@ async function addHolder(owner: Client, surveyId: string, draftId: string, state
 	await owner.query("insert into directory.operation_pin values ($1, -91.5, 41.6)", [operationId]);
 	const ids = [surveyId, operationId];
 	await owner.query("insert into collect.frame_crop values ($1, $2, 'apple', 40)", ids);
-	await owner.query("insert into collect.mailing (survey_id, operation_id, kind) values ($1, $2, 'invitation')", ids);
+	const mailingId = await idOf(
+		owner,
+		"insert into collect.mailing (survey_id, operation_id, kind) values ($1, $2, 'invitation') returning mailing_id as id",
+		ids,
+	);
 	await owner.query(
 		"insert into collect.personal_link (survey_id, operation_id, token_hash, expires_at) values ($1, $2, gen_random_uuid()::text, now())",
 		ids,
@@ -128,9 +135,31 @@ async function addHolder(owner: Client, surveyId: string, draftId: string, state
 		operation_id: operationId,
 		owner_id: ownerId,
 		response_id: responseId,
+		edit_finding_id: await addFinding(owner, responseId, mailingId, personId),
 		release_draft_id: draftId,
 		measure_key: measureKey,
 	};
+}
+
+/** A finding with its first step, what was asked about it and what it was corrected to. */
+async function addFinding(owner: Client, responseId: string, mailingId: string, personId: string): Promise<string> {
+	const findingId = await idOf(
+		owner,
+		`insert into collect.edit_finding (response_id, check_kind, check_key, question_key, about, about_key)
+		values ($1, 'range', 'harvested_higher', 'harvested', '[]', 'none') returning edit_finding_id as id`,
+		[responseId],
+	);
+	await owner.query("insert into collect.edit_finding_step (edit_finding_id, step) values ($1, 'made')", [findingId]);
+	await owner.query(
+		"insert into collect.edit_question (edit_finding_id, mailing_id, asked_by, expires_at) values ($1, $2, $3, now())",
+		[findingId, mailingId, personId],
+	);
+	await owner.query(
+		`insert into collect.correction (response_id, question_key, act, was, made_by)
+		values ($1, 'harvested', 'set_aside', '{}', $2)`,
+		[responseId, personId],
+	);
+	return findingId;
 }
 
 async function idOf(owner: Client, query: string, values: unknown[] = []): Promise<string> {

@@ -135,6 +135,21 @@ export const exceptions: { from: string; to: string; because: string }[] = [
 		because: "a submission writes its facts in its own transaction: neither is ever there without the other",
 	},
 	{
+		from: "app/collect/submission.server.ts",
+		to: "app/jobs/queue.server.ts",
+		because: "looking for odd answers is queued in the transaction that takes them in",
+	},
+	{
+		from: "app/tally/facts.server.ts",
+		to: "app/review/corrections.server.ts",
+		because: "facts are made of answers as review left them, in the transaction that decides it",
+	},
+	{
+		from: "app/tally/facts.server.ts",
+		to: "app/review/reviewed-answers.ts",
+		because: "facts are made of answers as review left them",
+	},
+	{
 		from: "app/jobs/worker.ts",
 		to: "app/jobs/tasks.server.ts",
 		because: "a program of its own, which no page imports",
