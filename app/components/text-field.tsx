@@ -20,6 +20,8 @@ type TextFieldProps = {
 	multiline?: boolean;
 	rows?: number;
 	maxLength?: number;
+	/** The language of what is typed, where it is not the page's: the browser checks its spelling by it. */
+	lang?: string;
 	/** A unit that stands beside the box. */
 	suffix?: ReactNode;
 	/** What belongs to the field and stands below its box. */

@@ -9,6 +9,7 @@ import enNetwork from "#locales/en/network.json" with { type: "json" };
 import enOrchard from "#locales/en/orchard.json" with { type: "json" };
 import enPublic from "#locales/en/public.json" with { type: "json" };
 import enRelease from "#locales/en/release.json" with { type: "json" };
+import enReport from "#locales/en/report.json" with { type: "json" };
 import esAnswered from "#locales/es/answered.json" with { type: "json" };
 import esCommon from "#locales/es/common.json" with { type: "json" };
 import esDataroom from "#locales/es/dataroom.json" with { type: "json" };
@@ -20,6 +21,7 @@ import esNetwork from "#locales/es/network.json" with { type: "json" };
 import esOrchard from "#locales/es/orchard.json" with { type: "json" };
 import esPublic from "#locales/es/public.json" with { type: "json" };
 import esRelease from "#locales/es/release.json" with { type: "json" };
+import esReport from "#locales/es/report.json" with { type: "json" };
 
 /** All words of the product, for the server. A browser loads one language only (`load-language.client.ts`). */
 export const resources = {
@@ -35,6 +37,7 @@ export const resources = {
 		orchard: enOrchard,
 		public: enPublic,
 		release: enRelease,
+		report: enReport,
 	},
 	es: {
 		answered: esAnswered,
@@ -48,5 +51,6 @@ export const resources = {
 		orchard: esOrchard,
 		public: esPublic,
 		release: esRelease,
+		report: esReport,
 	},
 };

@@ -32,3 +32,11 @@ export function cropRows(measure: ReleaseMeasure, cells: CropCell[]): CropCell[]
 	const all = cells.filter((cell) => cell.cropKey === "all" && lookOf(cell) !== "no_figure");
 	return [...numbered, ...rest.toSorted((a, b) => a.cropKey.localeCompare(b.cropKey)), ...all];
 }
+
+/** Losses to single causes, told like the whole loss as shares of one normal crop. Other measures have no parts. */
+export function partsOfLoss(whole: ReleaseMeasure, measures: ReleaseMeasure[]): ReleaseMeasure[] {
+	if (whole.key !== "crop_loss") return [];
+	return measures.filter(
+		({ key, kind, unit }) => key !== whole.key && key.endsWith("_loss") && kind === whole.kind && unit === whole.unit,
+	);
+}

@@ -1,5 +1,5 @@
 import { expect, test } from "vitest";
-import { missingWords, partsOf, referencesOf, slugOf, tooLongWords, typedFigures } from "./report.ts";
+import { missingWords, partsOf, referencesOf, referenceText, slugOf, tooLongWords, typedFigures } from "./report.ts";
 
 const words = { en: "Title", es: "Título" };
 
@@ -14,10 +14,24 @@ test("a text is taken apart at its references and nothing of it is lost", () => 
 	]);
 });
 
-test("figures typed by hand are found in both languages; references, years and counts are not", () => {
-	expect(typedFigures("We lost 38% and 1,200 lb of it")).toEqual(["38%", "1,200 lb"]);
-	expect(typedFigures("Se perdió el 38 por ciento, 900 libras")).toEqual(["38 por ciento", "900 libras"]);
-	expect(typedFigures("In 2025, [[crop_loss|apple|IA-3]] in 3 counties")).toEqual([]);
+test("numbers typed by hand are found in both languages; references, years, lists and addresses are not", () => {
+	expect(typedFigures("We lost 38% and 1,200 lb of it in 3 counties")).toEqual(["38%", "1,200 lb", "3"]);
+	expect(typedFigures("Se perdió el 38 por ciento, 900 libras, a -2.5 °C")).toEqual([
+		"38 por ciento",
+		"900 libras",
+		"-2.5 °C",
+	]);
+	expect(typedFigures("Bloom began on April 24, 2025.")).toEqual(["24"]);
+	expect(typedFigures("In 2025, [[crop_loss|apple|IA-3]] and [[crop_loss|apple|19|mean]] in IA-3")).toEqual([]);
+	expect(typedFigures("1. First\n2) Second [here](https://x.example/38%) https://y.example/7")).toEqual([]);
+});
+
+test("a reference can point to the season before or the mean of seasons, and is written back as it was", () => {
+	for (const text of ["[[crop_loss|apple|network]]", "[[crop_loss|apple|IA-3|last]]", "[[crop_loss|apple|19|mean]]"]) {
+		const part = partsOf(text)[0];
+		expect(part?.kind === "reference" && referenceText(part.reference)).toBe(text);
+	}
+	expect(partsOf("[[crop_loss|apple|19|next]]")[0]?.kind).toBe("text");
 });
 
 test("every reference is listed, from texts of both languages and from figure blocks", () => {

@@ -12,6 +12,9 @@ const area = z.string().regex(/^[A-Za-z0-9_-]{1,40}$/);
 export const cautionKeys = ["damaged_fruit", "pesticide", "frost_protection", "station_air", "local_advice"] as const;
 export type CautionKey = (typeof cautionKeys)[number];
 export const tableKinds = ["county", "district", "state"] as const;
+/** Crops as bars, areas as dots, seasons as a line, days as strips, and a loss with what took it. */
+export const chartKinds = ["crops", "areas", "seasons", "windows", "causes"] as const;
+export type ChartKind = (typeof chartKinds)[number];
 
 /** The blocks of a report. None holds a typed figure: numbers are addresses into the report's release. */
 export const Block = z.discriminatedUnion("type", [
@@ -21,6 +24,15 @@ export const Block = z.discriminatedUnion("type", [
 	z.object({ id, type: z.literal("map"), measure, crop }),
 	z.object({ id, type: z.literal("table"), measure, crop, kind: z.enum(tableKinds) }),
 	z.object({ id, type: z.literal("crops"), measure, area }),
+	z.object({
+		id,
+		type: z.literal("chart"),
+		chart: z.enum(chartKinds),
+		measure,
+		crop,
+		area,
+		kind: z.enum(["district", "state"]),
+	}),
 	z.object({ id, type: z.literal("caution"), key: z.enum(cautionKeys) }),
 ]);
 export type Block = z.infer<typeof Block>;
@@ -32,6 +44,7 @@ export const blockTypes = [
 	"map",
 	"table",
 	"crops",
+	"chart",
 	"caution",
 ] as const satisfies BlockType[];
 
@@ -42,35 +55,59 @@ export const ReportContent = z.object({
 });
 export type ReportContent = z.infer<typeof ReportContent>;
 
-export type Reference = { measure: string; crop: string; area: string };
+/** Of the report's own season, of the one before it, or the mean of up to five seasons before it. */
+export const eras = ["last", "mean"] as const;
+export type Reference = { measure: string; crop: string; area: string; when?: (typeof eras)[number] };
 export type TextPart = { kind: "text"; text: string } | { kind: "reference"; reference: Reference };
 
-const referencePattern = /\[\[([a-z][a-z0-9_.]{0,79})\|([a-z_]{1,40})\|([A-Za-z0-9_-]{1,40})\]\]/g;
+const referencePattern = /\[\[([a-z][a-z0-9_.]{0,79})\|([a-z_]{1,40})\|([A-Za-z0-9_-]{1,40})(?:\|(last|mean))?\]\]/g;
 
-/** A text with its references taken apart: `[[crop_loss|apple|network]]` stands for that figure of the release. */
+function toReference([, m = "", c = "", a = "", when]: RegExpExecArray): Reference {
+	return { measure: m, crop: c, area: a, ...(when && { when: when as Reference["when"] }) };
+}
+
+/**
+ * A text with its references taken apart: `[[crop_loss|apple|network]]` stands for that figure of the release, with `|last`
+ * for the same of the season before, and `[[cells|withheld|county]]` for how many cells of a kind are withheld.
+ */
 export function partsOf(text: string): TextPart[] {
 	const parts: TextPart[] = [];
 	let end = 0;
 	for (const match of text.matchAll(referencePattern)) {
 		if (match.index > end) parts.push({ kind: "text", text: text.slice(end, match.index) });
-		parts.push({
-			kind: "reference",
-			reference: { measure: match[1] ?? "", crop: match[2] ?? "", area: match[3] ?? "" },
-		});
+		parts.push({ kind: "reference", reference: toReference(match) });
 		end = match.index + match[0].length;
 	}
 	if (end < text.length) parts.push({ kind: "text", text: text.slice(end) });
 	return parts;
 }
 
-export const referenceText = ({ measure: m, crop: c, area: a }: Reference) => `[[${m}|${c}|${a}]]`;
+/** A text with a mark in place of each reference, and the references by the marks' numbers. */
+export function takenApart(text: string, mark: (index: number) => string) {
+	const references: Reference[] = [];
+	const marked = partsOf(text).map((part) =>
+		part.kind === "text" ? part.text : mark(references.push(part.reference) - 1),
+	);
+	return { marked: marked.join(""), references };
+}
 
+export const referenceText = ({ measure: m, crop: c, area: a, when }: Reference) =>
+	`[[${[m, c, a, ...(when ? [when] : [])].join("|")}]]`;
+
+/** What a release says of itself: cells of a kind with a status, as in `[[cells|withheld|county]]`. */
+export const cellCounts = "cells";
+
+/** A number with the sign or word after it that makes it a figure; names such as IA-3 are none. */
 const typedFigure =
-	/\d[\d.,]*\s*(?:%|percent|per cent|por ciento|lbs?\b|pounds?\b|libras?\b|tons?\b|toneladas?\b|bushels?\b|bu\b|kg\b|acres?\b|trees?\b|árbol(?:es)?\b)/giu;
+	/(?<![\p{L}\p{N}_.-])[-−+]?\d(?:[\d.,]*\d)?(?:\s*(?:%|°\s?[FC]?|percent|per cent|por ciento|lbs?\b|pounds?\b|libras?\b|tons?\b|toneladas?\b|bushels?\b|bu\b|kg\b|acres?\b|trees?\b|árbol(?:es)?\b))?/giu;
+const year = /^(?:19|20)\d\d$/;
+/** Addresses of links and the numbers of a list say nothing of the season. */
+const noProse = /\]\([^)]*\)|<?https?:\/\/\S+|^\s{0,3}\d{1,3}[.)](?=\s)/gmu;
 
-/** Figures typed by hand, which would not follow a revision of the release: "38%", "1,200 lb". */
+/** Numbers typed by hand, which would not follow a revision of the release: "38%", "in 3 counties", "April 24". Years may be. */
 export function typedFigures(text: string): string[] {
-	return [...text.replace(referencePattern, " ").matchAll(typedFigure)].map(([found]) => found);
+	const prose = text.replace(referencePattern, " ").replace(noProse, " ");
+	return [...prose.matchAll(typedFigure)].map(([found]) => found.trim()).filter((found) => !year.test(found));
 }
 
 const inWords = ({ en, es }: DraftWords) =>

@@ -1,29 +1,26 @@
 import type { Cell, CropCell, MapCell } from "./cell.ts";
-import { addressKey, findCells, listCells, listCropCells } from "./cells.server.ts";
+import { missingCautions } from "./cautions.ts";
+import { listCells, listCropCells } from "./cells.server.ts";
 import type { MapClass } from "./classes.ts";
 import { mapFiguresOf } from "./figures.server.ts";
 import { cropRows } from "./finding.ts";
+import { parseMarkdown, type Passage, withFigures } from "./markdown.ts";
 import { type Picture, pictureOf } from "./picture.server.ts";
 import type { Release, ReleaseMeasure } from "./release.ts";
-import { findReleaseById, listAreas, listCoveredStates, listMeasures } from "./releases.server.ts";
+import { findReleaseById, listAreas, listCoveredStates } from "./releases.server.ts";
+import { type EarlierFigure, lookUp, readSource, type Source, told, type Told } from "./report-source.server.ts";
 import { type ListedReport, listPublishedReports } from "./reports.server.ts";
-import {
-	type Block,
-	type CautionKey,
-	type DraftWords,
-	partsOf,
-	type Reference,
-	referencesOf,
-	type ReportContent,
-} from "./report.ts";
+import { type Block, type CautionKey, type DraftWords, partsOf, type ReportContent } from "./report.ts";
+import { resolveChart, type ResolvedChart } from "./resolved-chart.server.ts";
 
-type Told = Pick<ReleaseMeasure, "label" | "unit" | "decimals" | "season" | "hue">;
-/** A figure looked up; null where the release holds no such figure. */
-export type ResolvedFigure = { measure: Told; cell: CropCell } | null;
+/** A figure looked up; null where the release holds no such figure. Of the season before, its measure has that season. */
+export type ResolvedFigure = { measure: Told; cell: CropCell; earlier?: EarlierFigure } | { count: number } | null;
 export type ResolvedPart = { kind: "text"; text: string } | { kind: "figure"; figure: ResolvedFigure };
 export type ResolvedWords = { en: ResolvedPart[]; es: ResolvedPart[] };
+export type ResolvedText = { en: Passage<ResolvedFigure>[]; es: Passage<ResolvedFigure>[] };
 export type ResolvedBlock =
-	| { id: string; type: "heading" | "text"; text: ResolvedWords }
+	| { id: string; type: "heading"; text: ResolvedWords }
+	| { id: string; type: "text"; text: ResolvedText }
 	| { id: string; type: "figure"; figure: ResolvedFigure }
 	| {
 			id: string;
@@ -36,6 +33,7 @@ export type ResolvedBlock =
 	  }
 	| { id: string; type: "table"; measure: Told; cropKey: string; kind: string; cells: Cell[] }
 	| { id: string; type: "crops"; measure: Told; areaName: string; cells: CropCell[] }
+	| { id: string; type: "chart"; drawn: ResolvedChart }
 	| { id: string; type: "caution"; key: CautionKey }
 	| { id: string; type: "missing" };
 export type ResolvedReport = {
@@ -48,29 +46,34 @@ export type ResolvedReport = {
 
 /** A report with every reference looked up in its release, as the reader's role sees it. A withheld figure has no number. */
 export async function resolveReport(content: ReportContent, release: Release): Promise<ResolvedReport> {
-	const [measures, found, states] = await Promise.all([
-		listMeasures(release.releaseId),
-		findCells(release.releaseId, referencesOf(content)),
-		listCoveredStates(release.releaseId),
-	]);
-	const source = { release, measures: new Map(measures.map((measure) => [measure.key, measure])), found };
+	const source = await readSource(content, release);
+	const states = await listCoveredStates(release.releaseId);
 	return {
 		title: resolveWords(content.title, source),
 		summary: resolveWords(content.summary, source),
-		blocks: await Promise.all(content.blocks.map((block) => resolveBlock(block, source))),
+		blocks: [
+			...(await Promise.all(content.blocks.map((block) => resolveBlock(block, source)))),
+			...missingCautions(content, [...source.measures.values()]).map((key): ResolvedBlock => ({
+				id: `caution-${key}`,
+				type: "caution",
+				key,
+			})),
+		],
 		season: release.season,
 		picture: content.blocks.some((block) => block.type === "map") ? pictureOf(states) : null,
 	};
 }
 
-type Source = { release: Release; measures: Map<string, ReleaseMeasure>; found: Record<string, CropCell> };
-
 async function resolveBlock(block: Block, source: Source): Promise<ResolvedBlock> {
 	const { id } = block;
 	if (block.type === "caution") return { id, type: "caution", key: block.key };
-	if (block.type === "heading" || block.type === "text")
-		return { id, type: block.type, text: resolveWords(block.text, source) };
-	if (block.type === "figure") return { id, type: "figure", figure: resolveFigure(block, source) };
+	if (block.type === "heading") return { id, type: "heading", text: resolveWords(block.text, source) };
+	if (block.type === "text") return { id, type: "text", text: resolveText(block.text, source) };
+	if (block.type === "figure") return { id, type: "figure", figure: lookUp(block, source) };
+	if (block.type === "chart") {
+		const drawn = await resolveChart(block, source);
+		return drawn ? { id, type: "chart", drawn } : { id, type: "missing" };
+	}
 	const measure = source.measures.get(block.measure);
 	if (!measure) return { id, type: "missing" };
 	return resolveTable(block, told(measure), measure, source.release);
@@ -102,18 +105,15 @@ async function resolveTable(
 function resolveWords({ en, es }: DraftWords, source: Source): ResolvedWords {
 	const resolve = (text: string): ResolvedPart[] =>
 		partsOf(text).map((part) =>
-			part.kind === "text" ? part : { kind: "figure", figure: resolveFigure(part.reference, source) },
+			part.kind === "text" ? part : { kind: "figure", figure: lookUp(part.reference, source) },
 		);
 	return { en: resolve(en), es: resolve(es) };
 }
 
-function resolveFigure(reference: Reference, { measures, found }: Source): ResolvedFigure {
-	const measure = measures.get(reference.measure);
-	const cell = found[addressKey(reference)];
-	return measure && cell ? { measure: told(measure), cell } : null;
+function resolveText({ en, es }: DraftWords, source: Source): ResolvedText {
+	const resolve = (text: string) => withFigures(parseMarkdown(text), (reference) => lookUp(reference, source));
+	return { en: resolve(en), es: resolve(es) };
 }
-
-const told = ({ label, unit, decimals, season, hue }: ReleaseMeasure): Told => ({ label, unit, decimals, season, hue });
 
 /** A published report as a list tells of it: its title and summary with their figures looked up. */
 export type ToldReport = Omit<ListedReport, "title" | "summary"> & { title: ResolvedWords; summary: ResolvedWords };

@@ -1,5 +1,6 @@
 import { useTranslation } from "react-i18next";
 import { type Column, DataTable } from "#app/components/data-table.tsx";
+import { Chart } from "#app/components/chart/chart.tsx";
 import { Figure } from "#app/components/figure.tsx";
 import { useAreaName } from "#app/components/map/area-name.ts";
 import { bandText } from "#app/components/map/cell-words.ts";
@@ -9,13 +10,14 @@ import { Notice } from "#app/components/notice.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { CropTable } from "./crop-table.tsx";
 import type { ToldBlock, ToldCell, ToldMeasure } from "./report-data.ts";
-import { ToldText, useToldText } from "./told-words.tsx";
+import { Passages } from "./passages.tsx";
+import { useToldText } from "./told-words.tsx";
 
 type ReportBlocksProps = { blocks: ToldBlock[]; season: number; picture: DrawnPicture | null };
 
 /** The blocks of a report in their order. */
 export function ReportBlocks({ blocks, season, picture }: ReportBlocksProps) {
-	const { t } = useTranslation("public");
+	const { t, i18n } = useTranslation("public");
 	const toldText = useToldText();
 	return blocks.map((block) => {
 		switch (block.type) {
@@ -26,7 +28,7 @@ export function ReportBlocks({ blocks, season, picture }: ReportBlocksProps) {
 					</h2>
 				);
 			case "text":
-				return <ToldText key={block.id} told={block.text} />;
+				return <Passages key={block.id} passages={i18n.language === "es" ? block.text.es : block.text.en} />;
 			case "figure":
 				return <FigureBlock key={block.id} block={block} season={season} />;
 			case "map":
@@ -35,6 +37,8 @@ export function ReportBlocks({ blocks, season, picture }: ReportBlocksProps) {
 				return <TableBlock key={block.id} block={block} season={season} />;
 			case "crops":
 				return <CropsBlock key={block.id} block={block} season={season} />;
+			case "chart":
+				return <Chart key={block.id} drawn={block.drawn} season={season} />;
 			case "caution":
 				return (
 					<Notice key={block.id} tone="caution" title={t(`caution.${block.key}.title`)}>
@@ -63,7 +67,7 @@ function FigureBlock({ block: { figure }, season }: Of<"figure">) {
 	const { t } = useTranslation("public");
 	const title = useTitle();
 	const areaName = useAreaName();
-	if (!figure) return <p className="my-4 text-quiet">{t("report.noFigure")}</p>;
+	if (!figure || "count" in figure) return <p className="my-4 text-quiet">{t("report.noFigure")}</p>;
 	const { measure, cell } = figure;
 	return (
 		<div className="my-6 break-inside-avoid border-y-2 border-line py-5">

@@ -1,17 +1,24 @@
 import type { DrawnPicture } from "#app/components/map/static-map.tsx";
 import type { DrawnCell, DrawnClass, Hue } from "#app/components/map/map-data.ts";
+import type { Passage } from "#app/publish/markdown.ts";
+import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import type { FigureShape } from "#app/lib/format.ts";
 
 type Words = { en: string; es: string };
 export type ToldMeasure = FigureShape & { label: Words; hue: Hue };
 export type ToldCell = Omit<DrawnCell, "look" | "classIndex"> & { kind: string; stateFips: string | null };
 export type ToldCropCell = ToldCell & { cropKey: string };
-export type ToldFigure = { measure: ToldMeasure; cell: ToldCropCell } | null;
+export type ToldFigure =
+	| { measure: ToldMeasure; cell: ToldCropCell; earlier?: { of: "last" | "mean"; seasons: number[] } }
+	| { count: number }
+	| null;
+export type ToldPassage = Passage<ToldFigure>;
 export type ToldPart = { kind: "text"; text: string } | { kind: "figure"; figure: ToldFigure };
 export type ToldWords = { en: ToldPart[]; es: ToldPart[] };
 
 export type ToldBlock =
-	| { id: string; type: "heading" | "text"; text: ToldWords }
+	| { id: string; type: "heading"; text: ToldWords }
+	| { id: string; type: "text"; text: { en: ToldPassage[]; es: ToldPassage[] } }
 	| { id: string; type: "figure"; figure: ToldFigure }
 	| {
 			id: string;
@@ -24,6 +31,7 @@ export type ToldBlock =
 	  }
 	| { id: string; type: "table"; measure: ToldMeasure; cropKey: string; kind: string; cells: ToldCell[] }
 	| { id: string; type: "crops"; measure: ToldMeasure; areaName: string; cells: ToldCropCell[] }
+	| { id: string; type: "chart"; drawn: ResolvedChart }
 	| { id: string; type: "caution"; key: string }
 	| { id: string; type: "missing" };
 

@@ -1,25 +1,14 @@
 import { Fragment } from "react";
 import { useTranslation } from "react-i18next";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { figureWords } from "#app/lib/figure-words.ts";
 import type { ToldFigure, ToldPart, ToldWords } from "./report-data.ts";
 
-/** A looked-up figure as words inside a sentence: the number with its likely range, or the words for why there is none. */
+/** A looked-up figure as words inside a sentence, in the page's language. */
 export function useFigureWords() {
-	const { t } = useTranslation("public");
+	const { t } = useTranslation();
 	const format = useFormat();
-	return (figure: ToldFigure): string => {
-		if (!figure) return t("report.noFigure");
-		const { measure, cell } = figure;
-		if (cell.status === "withheld") return t("report.inText.withheld");
-		if (cell.status === "no_growers") return t("report.inText.noGrowers");
-		if (cell.steadiness === "rough") return t("report.inText.rough");
-		if (cell.value === null || cell.steadiness === null) return t("report.inText.notAsked");
-		const said = {
-			value: format.figure(cell.value, measure),
-			...format.ends(cell.lower ?? cell.value, cell.upper ?? cell.value, measure),
-		};
-		return t(cell.steadiness === "care" ? "report.inText.care" : "report.inText.steady", said);
-	};
+	return (figure: ToldFigure): string => figureWords(figure, t, format);
 }
 
 /** A report's text as one string, for a title. */

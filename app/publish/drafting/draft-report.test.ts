@@ -35,7 +35,8 @@ const input = {
 	release: { season: 2025, title: label },
 	measures: [measure("crop_loss"), measure("freeze_loss")],
 	measure: measure("crop_loss"),
-	counties: { shown: 12, withheld: 34 },
+	earlier: {},
+	pests: [],
 	say: { en: say, es: say },
 };
 
@@ -62,7 +63,11 @@ test("the widest differences are between shown districts; a withheld one is not 
 test("a release in which no crop has a network figure still makes a whole draft with its cautions", () => {
 	const draft = draftReport({ ...input, crops: [cell("plum", "network", null)], districts: [] });
 	expect(draft.summary.en).toContain("noLead");
-	expect(draft.blocks.filter(({ type }) => type === "caution")).toHaveLength(3);
+	expect(draft.blocks.filter(({ type }) => type === "caution")).toMatchObject([
+		{ key: "damaged_fruit" },
+		{ key: "frost_protection" },
+		{ key: "local_advice" },
+	]);
 });
 
 const day = (key: string): ReleaseMeasure => ({ ...measure(key), kind: "day", unit: "day", worse: null });
@@ -74,4 +79,39 @@ test("a release led by days tells the earliest crop in sentences of days, and ot
 	expect(made.summary.en).toBe("lead 2025 plum [[first_bloom|plum|network]] day");
 	expect(JSON.stringify(made.blocks)).toContain("where day");
 	expect(made.blocks.filter(({ type }) => type === "figure")).toMatchObject([{ measure: "petal_fall", crop: "plum" }]);
+});
+
+test("the widest changes come first, each with the season before and the mean of seasons where there are several", () => {
+	const crops = [cell("apple", "network", 41), cell("plum", "network", 62), cell("pawpaw", "network", 9)];
+	const season = (year: number, crop: string, value: number) => ({ season: year, cell: cell(crop, "network", value) });
+	const earlier = {
+		apple: [season(2024, "apple", 11), season(2023, "apple", 20)],
+		plum: [season(2024, "plum", 60)],
+		pawpaw: [season(2023, "pawpaw", 90)],
+	};
+	const draft = draftReport({ ...input, crops, districts: [], earlier });
+	const at = draft.blocks.findIndex((block) => block.type === "heading" && block.text.en.startsWith("changed"));
+	const text = draft.blocks[at + 1];
+	const lines = text?.type === "text" ? text.text.en.split("\n") : [];
+	expect(lines).toEqual([
+		expect.stringContaining("[[crop_loss|apple|network|mean]]"),
+		expect.stringMatching(/plum.*\[\[crop_loss\|plum\|network\|last\]\]/),
+	]);
+	expect(lines[1]).toMatch(/^- change /);
+	expect(draft.blocks[at + 2]).toMatchObject({ type: "chart", chart: "seasons", crop: "apple" });
+});
+
+test("causes are drawn where the release tells them, and of pests those that most saw, with the caution on labels", () => {
+	const scab = { ...measure("scab_seen"), hue: "pests" as const, kind: "proportion" as const };
+	const input2 = { ...input, crops: [cell("plum", "network", 62)], districts: [] };
+	const pests = [
+		{ measure: scab, cell: cell("apple", "network", 30) },
+		{ measure: scab, cell: cell("plum", "network", null) },
+	];
+	const draft = draftReport({ ...input2, measures: [...input.measures, scab], pests });
+	expect(draft.blocks).toContainEqual(expect.objectContaining({ type: "chart", chart: "causes" }));
+	const texts = JSON.stringify(draft);
+	expect(texts).toContain("[[scab_seen|apple|network]]");
+	expect(texts).not.toContain("[[scab_seen|plum|network]]");
+	expect(draft.blocks).toContainEqual(expect.objectContaining({ type: "caution", key: "pesticide" }));
 });

@@ -1,7 +1,9 @@
-import type { Cell, CropCell } from "../cell.ts";
-import { worstFirst } from "../finding.ts";
+import { type Cell, type CropCell, lookOf } from "../cell.ts";
+import { neededCautions } from "../cautions.ts";
+import { partsOfLoss, worstFirst } from "../finding.ts";
 import type { Release, ReleaseMeasure } from "../release.ts";
-import { type Block, type DraftWords, referenceText, type ReportContent } from "../report.ts";
+import { type Block, cellCounts, type DraftWords, referenceText, type ReportContent } from "../report.ts";
+import type { SeasonCell } from "../report-source.server.ts";
 
 /** Says one of the draft's sentences in one language; keys are those under `report_draft` of the public words. */
 export type Say = (key: string, values?: Record<string, string | number>) => string;
@@ -14,14 +16,16 @@ export type DraftInput = {
 	crops: CropCell[];
 	/** That measure's worst crop, district by district. */
 	districts: Cell[];
-	/** Counties of all crops together by status. */
-	counties: { shown: number; withheld: number };
+	/** That measure in the whole network in earlier seasons, by crop, the latest season first. */
+	earlier: Record<string, SeasonCell[]>;
+	/** The whole network's figures of single pests. */
+	pests: { measure: ReleaseMeasure; cell: CropCell }[];
 	say: { en: Say; es: Say };
 };
 
 /**
- * A first draft of a report, made of the release alone: the headline, crops side by side, where it was worst, how much is
- * withheld, and the cautions. Every figure in it is a reference; the associate rewrites and adds.
+ * A first draft of a report, made of the release alone: the headline, crops side by side, what changed, where it was worst,
+ * causes, pests, how much is withheld, and the cautions. Every figure in it is a reference; the associate rewrites and adds.
  */
 export function draftReport(input: DraftInput): ReportContent {
 	const { release, measure, crops } = input;
@@ -37,14 +41,14 @@ export function draftReport(input: DraftInput): ReportContent {
 	const blocks: Unnamed[] = [
 		{ type: "heading", text: sentence("happened") },
 		{ type: "text", text: lead ? sentence("lead", lead) : sentence("noLead", about) },
-		...(worst ? [{ type: "crops", measure: measure.key, area: worst.areaKey } as const] : []),
+		...(worst ? [chart("crops", measure, worst.cropKey)] : []),
+		...changePart(input, sentence),
 		...(worst ? wherePart(input, worst.cropKey, sentence) : []),
+		...(worst ? otherParts(input, worst.cropKey, sentence) : []),
 		{ type: "heading", text: sentence("withheldTitle") },
-		{ type: "text", text: sentence("withheld", { ...input.counties }) },
+		{ type: "text", text: sentence("withheld", { shown: counted("shown"), withheld: counted("withheld") }) },
 		{ type: "heading", text: sentence("cautions") },
-		{ type: "caution", key: "local_advice" },
-		{ type: "caution", key: "damaged_fruit" },
-		{ type: "caution", key: "frost_protection" },
+		...neededCautions(input.measures).map((key) => ({ type: "caution", key }) as const),
 	];
 	return {
 		title: sentence("title", about),
@@ -53,14 +57,83 @@ export function draftReport(input: DraftInput): ReportContent {
 	};
 }
 
+const counted = (status: string) => referenceText({ measure: cellCounts, crop: status, area: "county" });
+
+function chart(kind: Extract<Block, { type: "chart" }>["chart"], measure: ReleaseMeasure, crop: string): Unnamed {
+	return { type: "chart", chart: kind, measure: measure.key, crop, area: "network", kind: "district" };
+}
+
+type Sentence = (key: string, values?: Record<string, string | number>) => DraftWords;
+const mostChanges = 3;
+
+/** The crops whose figure moved furthest since the season before, beside the mean of earlier seasons where there is one. */
+function changePart({ measure, crops, earlier, release }: DraftInput, sentence: Sentence): Unnamed[] {
+	const changes = worstFirst(measure, crops).flatMap((cell) => {
+		const seasons = earlier[cell.cropKey] ?? [];
+		const last = seasons.find(({ season }) => season === release.season - 1)?.cell.value;
+		return typeof last === "number" ? [{ crop: cell.cropKey, by: Math.abs(cell.value - last), seasons }] : [];
+	});
+	const widest = changes.toSorted((a, b) => b.by - a.by)[0];
+	if (!widest) return [];
+	const told = changes.toSorted((a, b) => b.by - a.by).slice(0, mostChanges);
+	const lines = told.map(({ crop, seasons }) => {
+		const at = { measure: measure.key, crop, area: "network" };
+		return sentence(seasons.length > 1 ? "changeMean" : "change", {
+			crop,
+			now: referenceText(at),
+			last: referenceText({ ...at, when: "last" }),
+			mean: referenceText({ ...at, when: "mean" }),
+		});
+	});
+	return [
+		{ type: "heading", text: sentence("changed") },
+		{ type: "text", text: listed(lines) },
+		chart("seasons", measure, widest.crop),
+	];
+}
+
+/** Days as strips, the causes of a loss, and the pests that were seen most. */
+function otherParts({ measures, measure, pests }: DraftInput, crop: string, sentence: Sentence): Unnamed[] {
+	const days = measures.filter(({ kind }) => kind === "day");
+	const strips: Unnamed[] = days[0] && days.length > 1 ? [chart("windows", days[0], crop)] : [];
+	const causes: Unnamed[] =
+		partsOfLoss(measure, measures).length > 0
+			? [{ type: "heading", text: sentence("causes") }, chart("causes", measure, crop)]
+			: [];
+	const seen = pests
+		.filter(({ cell }) => lookOf(cell) === "number")
+		.toSorted((a, b) => (b.cell.value ?? 0) - (a.cell.value ?? 0))
+		.slice(0, mostPests)
+		.map(({ measure: { key, label }, cell }) => ({
+			figure: referenceText({ measure: key, crop: cell.cropKey, area: cell.areaKey }),
+			crop: cell.cropKey,
+			label,
+		}));
+	const ofPests: Unnamed[] =
+		seen.length > 0
+			? [
+					{ type: "heading", text: sentence("pests") },
+					{ type: "text", text: listed(seen.map(({ label, ...said }) => named(sentence("pest", said), label))) },
+				]
+			: [];
+	return [...strips, ...causes, ...ofPests];
+}
+const mostPests = 5;
+
+/** A measure's own words, which stand in the release in both languages, put before a sentence. */
+const named = (words: DraftWords, label: DraftWords): DraftWords => ({
+	en: `${label.en}, ${words.en}`,
+	es: `${label.es}, ${words.es}`,
+});
+const listed = (lines: DraftWords[]): DraftWords => ({
+	en: lines.map(({ en }) => `- ${en}`).join("\n"),
+	es: lines.map(({ es }) => `- ${es}`).join("\n"),
+});
+
 type Unnamed = Block extends infer B ? (B extends Block ? Omit<B, "id"> : never) : never;
 
 /** A map of the worst crop, its widest differences between districts, and the other measures of the same crop. */
-function wherePart(
-	{ measures, measure, districts }: DraftInput,
-	crop: string,
-	sentence: (key: string, values?: Record<string, string | number>) => DraftWords,
-): Unnamed[] {
+function wherePart({ measures, measure, districts }: DraftInput, crop: string, sentence: Sentence): Unnamed[] {
 	const shown = worstFirst(
 		measure,
 		districts.map((cell) => ({ ...cell, cropKey: crop })),
@@ -84,12 +157,16 @@ function wherePart(
 			: [];
 	const rest = measures.filter(({ key }) => key !== measure.key);
 	const days = rest.filter(({ kind }) => kind === "day");
-	const others = rest.filter(({ kind, worse }) => kind !== "day" && worse === measure.worse).slice(0, 2);
+	const parts = partsOfLoss(measure, measures);
+	const others = rest
+		.filter((other) => other.kind !== "day" && other.worse === measure.worse && other.hue !== "pests")
+		.filter((other) => !parts.includes(other))
+		.slice(0, 2);
 	return [
 		{ type: "heading", text: sentence("where", { measure: saidOf(measure) }) },
 		{ type: "map", measure: measure.key, crop },
 		...widest,
-		{ type: "table", measure: measure.key, crop, kind: "district" },
+		chart("areas", measure, crop),
 		...[...others, ...days].map((other) => ({ type: "figure" as const, measure: other.key, crop, area: "network" })),
 	];
 }

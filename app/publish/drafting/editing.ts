@@ -1,5 +1,13 @@
 import { z } from "zod";
-import { type Block, type BlockType, blockTypes, type Reference, referenceText, ReportContent } from "../report.ts";
+import {
+	type Block,
+	type BlockType,
+	blockTypes,
+	eras,
+	type Reference,
+	referenceText,
+	ReportContent,
+} from "../report.ts";
 
 /**
  * What a button of the editor asks for: `save`, `submit`, `add`; with a block's id, as in `up:b3`; or `overwrite:7`, to
@@ -21,7 +29,9 @@ export const EditorForm = ReportContent.extend({
 	edit: z.coerce.number().int().min(1),
 	intent: Intent,
 	add: z.enum(blockTypes).optional(),
-	pick: z.object({ measure: z.string(), crop: z.string(), area: z.string() }).optional(),
+	pick: z
+		.object({ measure: z.string(), crop: z.string(), area: z.string(), when: z.enum(eras).optional().catch(undefined) })
+		.optional(),
 });
 export type EditorForm = z.infer<typeof EditorForm>;
 
@@ -86,6 +96,8 @@ function newBlock(type: BlockType, id: string, { measure, crop, area }: Referenc
 			return { id, type, measure, crop, kind: "district" };
 		case "crops":
 			return { id, type, measure, area };
+		case "chart":
+			return { id, type, chart: "crops", measure, crop, area, kind: "district" };
 		case "caution":
 			return { id, type, key: "local_advice" };
 	}

@@ -1,11 +1,13 @@
 import type { Kysely } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
-import { countCells, listCells, listCropCells } from "../cells.server.ts";
+import { listCells, listCropCells } from "../cells.server.ts";
 import { leadingMeasure, worstFirst } from "../finding.ts";
 import type { ReaderDB } from "../reader.server.ts";
 import { findReleaseById, listMeasures } from "../releases.server.ts";
 import { slugOf } from "../report.ts";
+import type { ReleaseMeasure } from "../release.ts";
+import { findEarlier } from "../report-source.server.ts";
 import { draftReport, type Say } from "./draft-report.ts";
 
 export type Author = { personId: string; displayName: string };
@@ -31,8 +33,20 @@ export async function startReport(
 	const crops = await listCropCells(releaseId, measure.key, "network", released);
 	const worst = worstFirst(measure, crops)[0];
 	const districts = worst ? await listCells(releaseId, measure.key, worst.cropKey, "district", released) : [];
-	const counties = await countCells(releaseId, "county", released);
-	const content = draftReport({ release, measures, measure, crops, districts, counties, say });
+	const earlier = await findEarlier(
+		release,
+		crops.map(({ cropKey }) => ({ measure: measure.key, crop: cropKey, area: "network" })),
+	);
+	const content = draftReport({
+		release,
+		measures,
+		measure,
+		crops,
+		districts,
+		say,
+		earlier: Object.fromEntries(Object.entries(earlier).map(([key, cells]) => [key.split("|")[1] ?? "", cells])),
+		pests: await listPests(releaseId, measures, released),
+	});
 	const slug = await freeSlug(trx, slugOf(content.title.en));
 	const { report_id } = await trx
 		.insertInto("publish.report")
@@ -53,6 +67,20 @@ export async function startReport(
 		detail: { release: release.number },
 	});
 	return report_id;
+}
+
+/** How many saw each pest, crop by crop, in the whole network. */
+async function listPests(releaseId: string, measures: ReleaseMeasure[], released: Kysely<ReaderDB>) {
+	const pests = measures.filter(
+		({ hue, kind, key }) => hue === "pests" && kind === "proportion" && key.endsWith("_seen"),
+	);
+	const cells = await Promise.all(
+		pests.map(async (measure) => {
+			const ofCrops = await listCropCells(releaseId, measure.key, "network", released);
+			return ofCrops.filter(({ cropKey }) => cropKey !== "all").map((cell) => ({ measure, cell }));
+		}),
+	);
+	return cells.flat();
 }
 
 /** The address, with the first number that makes it one of its own. */

@@ -9,6 +9,7 @@ import { StatusBadge } from "#app/components/status-badge.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import { missingCautions } from "#app/publish/cautions.ts";
 import { applyEdit, EditorForm } from "#app/publish/drafting/editing.ts";
 import { findReport, saveReport, submitReport } from "#app/publish/drafting/reports.server.ts";
 import { listAreas, listCrops, listMeasures } from "#app/publish/releases.server.ts";
@@ -34,6 +35,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	return {
 		report,
 		offered: { measures: measures.map(({ key, label }) => ({ key, label })), crops, areas },
+		cautionsAdded: missingCautions(report.content, measures),
 		told: preview ? await resolveReport(report.content, release) : null,
 	};
 }
@@ -71,7 +73,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 
 export default function DeskReport({ loaderData, actionData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("public");
-	const { report, offered, told } = loaderData;
+	const { report, offered, cautionsAdded, told } = loaderData;
 	const title = wordsIn(report.content.title, i18n.language) || t("report_editor.untitled");
 	const address = href("/desk/reports/:reportId", { reportId: report.reportId });
 	return (
@@ -100,7 +102,7 @@ export default function DeskReport({ loaderData, actionData }: Route.ComponentPr
 			{told ? (
 				<ReportPreview told={told} published={report.state === "published"} />
 			) : (
-				<ReportEditor report={report} offered={offered} answer={actionData} />
+				<ReportEditor report={report} offered={offered} cautionsAdded={cautionsAdded} answer={actionData} />
 			)}
 		</Page>
 	);

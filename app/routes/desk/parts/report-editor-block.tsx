@@ -2,10 +2,9 @@ import { useTranslation } from "react-i18next";
 import { Button } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { Confirm } from "#app/components/confirm.tsx";
-import { Notice } from "#app/components/notice.tsx";
-import { useFormat } from "#app/i18n/use-format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
-import { type Block, cautionKeys, tableKinds, typedFigures } from "#app/publish/report.ts";
+import { type Block, cautionKeys, tableKinds } from "#app/publish/report.ts";
+import { ChartFields } from "./report-editor-chart.tsx";
 import { AreaField, CropField, MeasureField, type Offered, TextPair } from "./report-editor-fields.tsx";
 
 type EditorBlockProps = { block: Block; index: number; last: boolean; offered: Offered; problems?: Problem[] };
@@ -70,8 +69,14 @@ function BlockFields({ block, name, label, offered, problems }: BlockFieldsProps
 		case "text":
 			return (
 				<>
-					<TextPair name={`${name}.text`} label={label} value={block.text} problems={problems} rows={6} />
-					<TypedFigures text={`${block.text.en}\n${block.text.es}`} />
+					<TextPair
+						name={`${name}.text`}
+						label={label}
+						value={block.text}
+						problems={problems}
+						rows={6}
+						help={t("report:editor.markdown")}
+					/>
 					<Button kind="secondary" size="small" name="intent" value={`insert:${block.id}`}>
 						{t("report_editor.insert")}
 					</Button>
@@ -90,6 +95,8 @@ function BlockFields({ block, name, label, offered, problems }: BlockFieldsProps
 					<p className="max-w-prose text-sm text-quiet">{t(`caution.${block.key}.body`)}</p>
 				</>
 			);
+		case "chart":
+			return <ChartFields block={block} name={name} offered={offered} />;
 		default:
 			return (
 				<div className="flex flex-wrap gap-x-4">
@@ -108,17 +115,4 @@ function BlockFields({ block, name, label, offered, problems }: BlockFieldsProps
 				</div>
 			);
 	}
-}
-
-/** A typed figure does not follow the release; the associate is told, and decides. */
-function TypedFigures({ text }: { text: string }) {
-	const { t } = useTranslation("public");
-	const format = useFormat();
-	const found = typedFigures(text);
-	if (found.length === 0) return null;
-	return (
-		<Notice tone="attention" title={t("report_editor.typed.title")}>
-			{t("report_editor.typed.body", { found: format.list(found) })}
-		</Notice>
-	);
 }

@@ -1,39 +1,73 @@
+import { useState } from "react";
 import { useTranslation } from "react-i18next";
 import { AreaPicker } from "#app/components/area-picker.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { TextField } from "#app/components/text-field.tsx";
-import { wordsIn } from "#app/i18n/language.ts";
+import { type Language, wordsIn } from "#app/i18n/language.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import type { ReleaseArea, ReleaseMeasure } from "#app/publish/release.ts";
-import type { DraftWords, ReportContent } from "#app/publish/report.ts";
+import { type DraftWords, eras, type ReportContent, typedFigures } from "#app/publish/report.ts";
 
 /** What a release holds to point to. */
 export type Offered = { measures: Pick<ReleaseMeasure, "key" | "label">[]; crops: string[]; areas: ReleaseArea[] };
 
-type TextPairProps = { name: string; label: string; value: DraftWords; problems?: Problem[]; rows?: number };
+type TextPairProps = {
+	name: string;
+	label: string;
+	value: DraftWords;
+	problems?: Problem[];
+	rows?: number;
+	help?: string;
+};
 
-/** One text in both languages, side by side where there is room. */
-export function TextPair({ name, label, value, problems, rows }: TextPairProps) {
-	const { t } = useTranslation("public");
+/** One text in both languages, side by side where there is room, each with what is still amiss in it. */
+export function TextPair(props: TextPairProps) {
 	return (
 		<div className="grid gap-x-6 lg:grid-cols-2">
-			{(["en", "es"] as const).map((language) => {
-				const field = `${name}.${language}`;
-				return (
-					<div key={language} lang={language}>
-						<TextField
-							name={field}
-							label={t("report_editor.inLanguage", { label, language: t(`common:language.${language}`) })}
-							defaultValue={value[language]}
-							multiline={rows !== undefined}
-							rows={rows}
-							size="full"
-							problem={problems?.find((problem) => problem.field === field)}
-						/>
-					</div>
-				);
-			})}
+			<TextIn {...props} language="en" />
+			<TextIn {...props} language="es" />
 		</div>
+	);
+}
+
+function TextIn({ name, label, value, problems, rows, help, language }: TextPairProps & { language: Language }) {
+	const { t } = useTranslation("public");
+	const [text, setText] = useState(value[language]);
+	const field = `${name}.${language}`;
+	return (
+		// What is typed bubbles up to here; the field itself stays uncontrolled, and works without scripts.
+		<div onInput={(event) => setText((event.target as HTMLTextAreaElement).value)}>
+			<TextField
+				name={field}
+				label={t("report_editor.inLanguage", { label, language: t(`common:language.${language}`) })}
+				defaultValue={value[language]}
+				multiline={rows !== undefined}
+				rows={rows}
+				size="full"
+				help={help}
+				lang={language}
+				problem={problems?.find((problem) => problem.field === field)}
+				below={<Amiss text={text} />}
+			/>
+		</div>
+	);
+}
+
+/** Beside the field: a text that is missing, and numbers that are typed and so would not follow the release. */
+function Amiss({ text }: { text: string }) {
+	const { t } = useTranslation("report");
+	const format = useFormat();
+	const found = typedFigures(text);
+	const words = !text.trim()
+		? t("editor.missing")
+		: found.length > 0
+			? t("editor.typed", { count: found.length, found: format.list(found) })
+			: "";
+	return (
+		<p aria-live="polite" className="mt-1 text-sm font-bold text-attention">
+			{words}
+		</p>
 	);
 }
 
@@ -69,6 +103,12 @@ export function PlacePicker({ offered }: { offered: Offered }) {
 				<MeasureField name="pick.measure" offered={offered} />
 				<CropField name="pick.crop" offered={offered} />
 				<AreaField name="pick.area" offered={offered} />
+				<ChoiceField
+					kind="select"
+					name="pick.when"
+					legend={t("report:editor.when")}
+					options={["now", ...eras].map((era) => ({ value: era, label: t(`report:editor.eras.${era}`) }))}
+				/>
 			</div>
 		</fieldset>
 	);

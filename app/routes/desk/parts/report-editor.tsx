@@ -6,24 +6,28 @@ import { ChoiceField } from "#app/components/choice-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
+import { useFormat } from "#app/i18n/use-format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import type { DeskReport } from "#app/publish/drafting/reports.server.ts";
-import { blockTypes, type ReportContent } from "#app/publish/report.ts";
+import { blockTypes, type CautionKey, type ReportContent } from "#app/publish/report.ts";
 import { EditorBlock } from "./report-editor-block.tsx";
 import { type Offered, PlacePicker, TextPair, useFieldLabels } from "./report-editor-fields.tsx";
 
 type ReportEditorProps = {
 	report: Pick<DeskReport, "content" | "edit">;
 	offered: Offered;
+	/** Cautions that the page will add to what stands here. */
+	cautionsAdded: CautionKey[];
 	/** What an action sent back instead of saving. */
 	answer?: { content: ReportContent; edit: number; problems: Problem[]; conflict: number | null };
 };
 
 /** One form for the whole report: every button saves all that is written, then does its own act. */
-export function ReportEditor({ report, offered, answer }: ReportEditorProps) {
+export function ReportEditor({ report, offered, cautionsAdded, answer }: ReportEditorProps) {
 	const { t } = useTranslation("public");
 	const content = answer?.content ?? report.content;
 	const labels = useFieldLabels(content);
+	const format = useFormat();
 	const busy = useNavigation().state === "submitting";
 	useFocusOnHash();
 	return (
@@ -60,6 +64,13 @@ export function ReportEditor({ report, offered, answer }: ReportEditorProps) {
 							/>
 						))}
 					</ol>
+					{cautionsAdded.length > 0 && (
+						<Notice tone="caution">
+							{t("report:editor.cautionsAdded", {
+								cautions: format.list(cautionsAdded.map((key) => t(`caution.${key}.title`))),
+							})}
+						</Notice>
+					)}
 					<div className="mt-6 flex flex-wrap items-end gap-3 border-t border-rule pt-4">
 						<ChoiceField
 							kind="select"

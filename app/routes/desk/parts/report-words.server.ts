@@ -2,7 +2,6 @@ import { createInstance } from "i18next";
 import { resources } from "#app/i18n/resources.ts";
 import { i18nextSettings } from "#app/i18n/settings.ts";
 import type { Language } from "#app/i18n/language.ts";
-import { formatterFor } from "#app/lib/format.ts";
 import type { Say } from "#app/publish/drafting/draft-report.ts";
 
 /** The sentences of a report's first draft in both languages, whatever the associate's own. */
@@ -11,12 +10,9 @@ export async function draftWords(): Promise<{ en: Say; es: Say }> {
 	await words.init({ ...i18nextSettings, resources, lng: "en" });
 	const sayIn = (language: Language): Say => {
 		const t = words.getFixedT(language, "public");
-		const format = formatterFor(language, t);
-		return (key, { crop, measure, shown, withheld, ...values } = {}) =>
+		return (key, { crop, measure, ...values } = {}) =>
 			t([`report_draft.${key}_${measure}`, `report_draft.${key}`], {
 				...values,
-				shown: typeof shown === "number" ? format.number(shown) : undefined,
-				withheld: typeof withheld === "number" ? format.number(withheld) : undefined,
 				crop: crop && t([`crop_said.${crop}`, `common:crop.${crop}`]),
 			});
 	};

@@ -1,0 +1,109 @@
+import { useTranslation } from "react-i18next";
+import { useAreaName } from "#app/components/map/area-name.ts";
+import { wordsIn } from "#app/i18n/language.ts";
+import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
+import { CauseBars } from "./cause-bars.tsx";
+import { paleFill, partFill } from "./chart-fills.ts";
+import { ChartTable } from "./chart-table.tsx";
+import { DayStrips } from "./day-strips.tsx";
+import { SeasonLine } from "./season-line.tsx";
+import { useFinding } from "./use-finding.ts";
+import { AreaDots, CropBars } from "./value-rows.tsx";
+
+/** A chart under a title that says what it shows, how to read it, and the same figures as a table. */
+export function Chart({ drawn, season }: { drawn: ResolvedChart; season: number }) {
+	const { t } = useTranslation("report");
+	const finding = useFinding()(drawn);
+	const subject = useSubject(drawn, season);
+	const alternative = t(`chart.alternative.${drawn.chart}`, { finding, subject });
+	return (
+		<figure className="my-8">
+			<figcaption className="mb-3">
+				<p className="max-w-prose text-lg font-bold">{finding}</p>
+				<p className="text-sm text-quiet">{subject}</p>
+			</figcaption>
+			<Drawing drawn={drawn} alternative={alternative} />
+			{drawn.chart === "causes" && <Key drawn={drawn} />}
+			<p className="mb-3 mt-2 max-w-prose text-sm text-quiet">
+				{t(`chart.read.${drawn.chart}`)} {isCareful(drawn) && t("chart.care")}
+			</p>
+			<ChartTable drawn={drawn} caption={subject} />
+		</figure>
+	);
+}
+
+function Drawing({ drawn, alternative }: { drawn: ResolvedChart; alternative: string }) {
+	switch (drawn.chart) {
+		case "crops":
+			return <CropBars drawn={drawn} alternative={alternative} />;
+		case "areas":
+			return <AreaDots drawn={drawn} alternative={alternative} />;
+		case "seasons":
+			return <SeasonLine drawn={drawn} alternative={alternative} />;
+		case "windows":
+			return <DayStrips drawn={drawn} alternative={alternative} />;
+		case "causes":
+			return <CauseBars drawn={drawn} alternative={alternative} />;
+	}
+}
+
+/** What exactly is drawn: measure, crop or area, and season. */
+function useSubject(drawn: ResolvedChart, season: number): string {
+	const { t, i18n } = useTranslation("report");
+	const areaName = useAreaName();
+	const labels = drawn.chart === "windows" ? drawn.measures : [drawn.measure];
+	const measure = labels.map(({ label }) => wordsIn(label, i18n.language)).join(", ");
+	switch (drawn.chart) {
+		case "areas":
+			return t("chart.subject.areas", {
+				measure,
+				crop: t(`common:crop.${drawn.cropKey}`),
+				areas: t(`common:areaKind.plural.${drawn.kind}`),
+				season,
+			});
+		case "seasons":
+			return t("chart.subject.seasons", {
+				measure,
+				crop: t(`common:crop.${drawn.cropKey}`),
+				area: areaName(drawn.area),
+			});
+		default:
+			return t("chart.subject.crops", { measure, area: areaName(drawn.area), season });
+	}
+}
+
+/** Which part of a bar is which cause. */
+function Key({ drawn }: { drawn: Extract<ResolvedChart, { chart: "causes" }> }) {
+	const { t, i18n } = useTranslation("report");
+	const entries = [
+		...drawn.parts.map(({ label }, index) => ({
+			fill: partFill(drawn.measure.hue, index),
+			words: wordsIn(label, i18n.language),
+		})),
+		{ fill: paleFill[drawn.measure.hue], words: t("chart.rest") },
+	];
+	return (
+		<ul className="mt-2 flex list-none flex-wrap gap-x-6 gap-y-1 text-sm">
+			{entries.map(({ fill, words }) => (
+				<li key={words} className="flex items-center gap-2">
+					<svg viewBox="0 0 18 12" aria-hidden="true" className="chart h-3 w-[18px] shrink-0">
+						<rect x="0.5" y="0.5" width="17" height="11" className={`chart-edge ${fill}`} />
+					</svg>
+					{words}
+				</li>
+			))}
+		</ul>
+	);
+}
+
+function isCareful(drawn: ResolvedChart): boolean {
+	switch (drawn.chart) {
+		case "crops":
+		case "areas":
+			return drawn.rows.some(({ steadiness }) => steadiness === "care");
+		case "seasons":
+			return drawn.rows.some(({ cell }) => cell.steadiness === "care");
+		default:
+			return false;
+	}
+}

@@ -1,0 +1,60 @@
+import { useFormat } from "#app/i18n/use-format.ts";
+import { classes } from "#app/components/classes.ts";
+import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
+import { markFill } from "./chart-fills.ts";
+import { chartWidth } from "./row-chart.tsx";
+import { placeOn, scaleOf } from "./scale.ts";
+
+type SeasonLineProps = { drawn: Extract<ResolvedChart, { chart: "seasons" }>; alternative: string };
+
+const [top, bottom, left, right] = [24, 150, 40, chartWidth - 40];
+
+/** One figure season by season, each with its likely range; a season without a number is left open. */
+export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLineProps) {
+	const format = useFormat();
+	const told = rows.filter(({ cell }) => cell.value !== null && cell.steadiness !== "rough");
+	const days = measure.unit === "day";
+	const ends = told.flatMap(({ cell }) => [cell.lower ?? cell.value ?? 0, cell.upper ?? cell.value ?? 0]);
+	const scale = scaleOf(ends.concat(days ? [] : [0]), { zero: !days, days, wanted: 3 });
+	const y = placeOn(scale, bottom, top);
+	const [first, last] = [rows[0]?.season ?? 0, rows.at(-1)?.season ?? 0];
+	const x = (season: number) =>
+		first === last ? (left + right) / 2 : left + ((season - first) / (last - first)) * (right - left);
+	const path = told.map(({ season, cell }, index) => `${index ? "L" : "M"}${x(season)} ${y(cell.value ?? 0)}`).join("");
+	return (
+		<svg
+			viewBox={`0 0 ${chartWidth} ${bottom + 24}`}
+			role="img"
+			aria-label={alternative}
+			className="chart block h-auto w-full max-w-lg"
+		>
+			{scale.ticks.map((tick) => (
+				<line key={tick} x1={0} x2={chartWidth} y1={y(tick)} y2={y(tick)} className="chart-grid" />
+			))}
+			<path d={path} className="chart-line" />
+			{told.map(({ season, cell }) => {
+				const [lower, upper] = [y(cell.lower ?? cell.value ?? 0), y(cell.upper ?? cell.value ?? 0)];
+				return (
+					<g key={season}>
+						<path
+							d={`M${x(season) - 4} ${upper}h8M${x(season)} ${upper}V${lower}M${x(season) - 4} ${lower}h8`}
+							className="chart-whisker"
+						/>
+						<circle
+							{...{ cx: x(season), cy: y(cell.value ?? 0), r: 6 }}
+							className={classes("chart-edge", markFill[measure.hue], cell.steadiness === "care" && "chart-care")}
+						/>
+						<text x={x(season)} y={upper - 8} textAnchor="middle" className="chart-text font-bold">
+							{days
+								? format.figure(cell.value ?? 0, { ...measure, season })
+								: format.number(cell.value ?? 0, measure.decimals)}
+						</text>
+						<text x={x(season)} y={bottom + 18} textAnchor="middle" className="chart-quiet">
+							{season}
+						</text>
+					</g>
+				);
+			})}
+		</svg>
+	);
+}

@@ -1,0 +1,72 @@
+import { useTranslation } from "react-i18next";
+import { classes } from "#app/components/classes.ts";
+import { useAreaName } from "#app/components/map/area-name.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
+import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
+import { markFill } from "./chart-fills.ts";
+import { careClass, decimalsOf, ends, lookOf, numbered, type Shown, useValueText } from "./chart-look.ts";
+import { bandHeight, RowChart, Whisker } from "./row-chart.tsx";
+import { scaleOf } from "./scale.ts";
+
+type Drawn<K extends "crops" | "areas"> = { drawn: Extract<ResolvedChart, { chart: K }>; alternative: string };
+
+/** Crops as bars from zero, each with its likely range; days, which have no zero, as dots. */
+export function CropBars({ drawn: { measure, rows }, alternative }: Drawn<"crops">) {
+	const { t } = useTranslation();
+	const named = rows.map((cell) => ({ key: cell.cropKey, label: t(`common:crop.${cell.cropKey}`), cell }));
+	return <ValueRows rows={named} measure={measure} bars={measure.unit !== "day"} alternative={alternative} />;
+}
+
+/** Areas as dots with their likely range. */
+export function AreaDots({ drawn: { measure, rows }, alternative }: Drawn<"areas">) {
+	const areaName = useAreaName();
+	const named = rows.map((cell) => ({ key: cell.areaKey, label: areaName(cell), cell }));
+	return <ValueRows rows={named} measure={measure} bars={false} alternative={alternative} />;
+}
+
+type ValueRowsProps = {
+	rows: { key: string; label: string; cell: Shown }[];
+	measure: Drawn<"crops">["drawn"]["measure"];
+	bars: boolean;
+	alternative: string;
+};
+
+function ValueRows({ rows, measure, bars, alternative }: ValueRowsProps) {
+	const valueText = useValueText();
+	const format = useFormat();
+	const days = measure.unit === "day";
+	const values = numbered(rows.map(({ cell }) => cell)).flatMap(ends);
+	const scale = scaleOf(days && values.length > 0 ? values : [...values, 0], {
+		zero: !days,
+		days,
+		wanted: days ? 2 : 4,
+	});
+	return (
+		<RowChart
+			rows={rows.map(({ key, label, cell }) => ({
+				key,
+				label,
+				value: valueText(cell, measure),
+				look: lookOf(cell),
+			}))}
+			scale={scale}
+			tickText={(tick) => (days ? format.figure(tick, measure) : format.number(tick, decimalsOf(scale.ticks)))}
+			alternative={alternative}
+			mark={(index, top, x) => {
+				const { cell } = rows[index]!;
+				const value = x(cell.value ?? 0);
+				const [lower, upper] = ends(cell);
+				const y = top + bandHeight / 2;
+				const look = classes("chart-edge", markFill[measure.hue], careClass(cell));
+				const bar = { x: x(0), y: top, width: Math.max(0.5, value - x(0)), height: bandHeight };
+				return (
+					<>
+						{bars && <rect {...bar} className={look} />}
+						<Whisker from={x(lower)} to={x(upper)} y={y} />
+						{!bars && <circle cx={value} cy={y} r={6} className={look} />}
+					</>
+				);
+			}}
+		/>
+	);
+}

@@ -1,0 +1,37 @@
+import type { TFunction } from "i18next";
+import type { FigureShape, Formatter } from "./format.ts";
+
+/** A figure of a report as a sentence tells it: a released one, one of earlier seasons, or a count of cells. */
+export type SaidFigure =
+	| {
+			measure: FigureShape;
+			cell: {
+				status: "shown" | "withheld" | "no_growers";
+				value: number | null;
+				lower: number | null;
+				upper: number | null;
+				steadiness: "steady" | "care" | "rough" | null;
+			};
+			earlier?: { of: "last" | "mean"; seasons: number[] };
+	  }
+	| { count: number }
+	| null;
+
+/** A figure inside a sentence: the number with its likely range, or the words for why there is none. */
+export function figureWords(figure: SaidFigure, t: TFunction, format: Formatter): string {
+	if (!figure) return t("public:report.noFigure");
+	if ("count" in figure) return format.number(figure.count);
+	const { measure, cell, earlier } = figure;
+	if (cell.status === "withheld") return t("public:report.inText.withheld");
+	if (cell.status === "no_growers") return t("public:report.inText.noGrowers");
+	if (cell.steadiness === "rough") return t("public:report.inText.rough");
+	if (cell.value === null || cell.steadiness === null) return t("public:report.inText.notAsked");
+	const said = {
+		value: format.figure(cell.value, measure),
+		...format.ends(cell.lower ?? cell.value, cell.upper ?? cell.value, measure),
+		seasons: format.list((earlier?.seasons ?? []).map(String)),
+	};
+	if (earlier?.of === "mean") return t("report:inText.mean", said);
+	if (earlier) return t("report:inText.last", said);
+	return t(cell.steadiness === "care" ? "public:report.inText.care" : "public:report.inText.steady", said);
+}
