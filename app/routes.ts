@@ -91,6 +91,7 @@ export default [
 					route("mailing", "routes/desk/mailing.tsx"),
 					route("mailing/:kind", "routes/desk/mail-preview.tsx"),
 					route("answered", "routes/desk/answered.tsx"),
+					route("calls", "routes/desk/calls.tsx"),
 					route("responses", "routes/desk/responses.tsx"),
 					route("responses/:responseId", "routes/desk/response.tsx"),
 					route("estimates", "routes/desk/estimates.tsx"),

@@ -92,6 +92,7 @@ export interface CollectContact {
   contact_id: Generated<string>;
   made_at: Generated<Timestamp>;
   next_on: string | null;
+  next_time: string | null;
   note: Generated<string>;
   operation_id: string;
   outcome: string;
@@ -156,6 +157,16 @@ export interface CollectEditQuestion {
   token_hash: string | null;
 }
 
+export interface CollectEntryDraft {
+  mode: string;
+  operation_id: string;
+  person_id: string;
+  saved_at: Generated<Timestamp>;
+  started_at: Generated<Timestamp>;
+  survey_id: string;
+  typed: Json;
+}
+
 export interface CollectFact {
   county_fips: string;
   crop_key: string;
@@ -202,6 +213,15 @@ export interface CollectFrameOperation {
   state_fips: string;
   stratum_key: string;
   survey_id: string;
+}
+
+export interface CollectLateDecision {
+  decided_at: Generated<Timestamp>;
+  decided_by: string;
+  reason: string;
+  response_id: string;
+  taken: boolean;
+  version: number;
 }
 
 export interface CollectMailing {
@@ -314,7 +334,9 @@ export interface CollectResponse {
 
 export interface CollectSubmission {
   answers: Json;
+  entered_by: string | null;
   late: Generated<boolean>;
+  mode: Generated<string>;
   response_id: string;
   submitted_at: Generated<Timestamp>;
   version: number;
@@ -624,11 +646,13 @@ export interface DB {
   "collect.edit_finding": CollectEditFinding;
   "collect.edit_finding_step": CollectEditFindingStep;
   "collect.edit_question": CollectEditQuestion;
+  "collect.entry_draft": CollectEntryDraft;
   "collect.fact": CollectFact;
   "collect.form": CollectForm;
   "collect.form_version": CollectFormVersion;
   "collect.frame_crop": CollectFrameCrop;
   "collect.frame_operation": CollectFrameOperation;
+  "collect.late_decision": CollectLateDecision;
   "collect.mailing": CollectMailing;
   "collect.personal_link": CollectPersonalLink;
   "collect.photo": CollectPhoto;

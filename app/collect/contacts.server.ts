@@ -1,7 +1,9 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import type { ContactOutcome, ContactWay, NewContact } from "./contacts.schema.ts";
+import { type ContactOutcome, type ContactWay, dispositionAfter, type NewContact } from "./contacts.schema.ts";
+import type { Disposition } from "./frame-list.server.ts";
+import { hasDraftedRelease } from "./survey-opening.server.ts";
 
 /** Contacts made with an operation, newest first. The caller has found it. */
 export async function listContacts(trx: Trx, operationId: string) {
@@ -10,6 +12,7 @@ export async function listContacts(trx: Trx, operationId: string) {
 		.innerJoin("auth.person as p", "p.person_id", "c.person_id")
 		.where("c.operation_id", "=", operationId)
 		.select(["c.contact_id as contactId", "c.made_at as madeAt", "c.note", "c.next_on as nextOn"])
+		.select(sql<string | null>`to_char(c.next_time, 'HH24:MI')`.as("nextTime"))
 		.select("p.display_name as personName")
 		.select(sql<ContactWay>`c.way`.as("way"))
 		.select(sql<ContactOutcome>`c.outcome`.as("outcome"))
@@ -20,12 +23,15 @@ export async function listContacts(trx: Trx, operationId: string) {
 }
 export type Contact = Awaited<ReturnType<typeof listContacts>>[number];
 
-/** Notes a contact with an operation of the viewer's states. What is noted stays: a further note puts it right. */
+/**
+ * Notes a contact with an operation of the viewer's states. What is noted stays: a further note puts it right. About a
+ * survey, an outcome that means a disposition sets it, until a release of the survey is drafted.
+ */
 export async function noteContact(
 	trx: Trx,
 	viewer: Associate,
 	operationId: string,
-	{ way, outcome, note, nextOn }: NewContact,
+	{ surveyId, way, outcome, note, nextOn, nextTime }: NewContact,
 ): Promise<"noted" | "not_found"> {
 	const seen = await trx
 		.selectFrom("directory.operation")
@@ -35,9 +41,55 @@ export async function noteContact(
 		.where("status", "=", "active")
 		.executeTakeFirst();
 	if (!seen) return "not_found";
+	if (surveyId !== undefined) {
+		const noted = await noteDisposition(trx, viewer, { surveyId, operationId }, outcome);
+		if (noted === "not_found") return noted;
+	}
 	await trx
 		.insertInto("collect.contact")
-		.values({ operation_id: operationId, person_id: viewer.personId, way, outcome, note, next_on: nextOn ?? null })
+		.values({
+			operation_id: operationId,
+			survey_id: surveyId ?? null,
+			person_id: viewer.personId,
+			way,
+			outcome,
+			note,
+			next_on: nextOn ?? null,
+			next_time: nextTime ?? null,
+		})
+		.execute();
+	return "noted";
+}
+
+async function noteDisposition(
+	trx: Trx,
+	viewer: Associate,
+	{ surveyId, operationId }: { surveyId: string; operationId: string },
+	outcome: ContactOutcome,
+): Promise<"noted" | "not_found"> {
+	// Drafting a release waits for this, and this for the drafting: none is made of a frame that is changing.
+	await trx.selectFrom("collect.survey").select("survey_id").where("survey_id", "=", surveyId).forShare().execute();
+	const asked = await trx
+		.selectFrom("collect.frame_operation as f")
+		.innerJoin("collect.survey as s", "s.survey_id", "f.survey_id")
+		.where("f.survey_id", "=", surveyId)
+		.where("f.operation_id", "=", operationId)
+		.where((eb) => eb("f.state_fips", "=", eb.fn.any(eb.val(viewer.stateFips))))
+		.select([
+			sql<Disposition>`f.disposition`.as("disposition"),
+			sql<boolean>`exists (select from collect.response r where r.survey_id = f.survey_id
+				and r.operation_id = f.operation_id and r.withdrawn_at is not null)`.as("withdrawn"),
+		])
+		.forUpdate("f")
+		.executeTakeFirst();
+	if (!asked) return "not_found";
+	const disposition = dispositionAfter(asked, outcome);
+	if (disposition === asked.disposition || (await hasDraftedRelease(trx, surveyId))) return "noted";
+	await trx
+		.updateTable("collect.frame_operation")
+		.set({ disposition, disposition_at: sql`now()` })
+		.where("survey_id", "=", surveyId)
+		.where("operation_id", "=", operationId)
 		.execute();
 	return "noted";
 }

@@ -57,7 +57,7 @@ async function countAsRefused(trx: Trx, place: { surveyId: string; operationId: 
 		.set({ disposition: "refused", disposition_at: sql`now()` })
 		.where("survey_id", "=", place.surveyId)
 		.where("operation_id", "=", place.operationId)
-		.where("disposition", "in", ["partial", "not_reached", "undeliverable"])
+		.where("disposition", "in", ["partial", "reached", "not_reached", "undeliverable"])
 		.execute();
 }
 

@@ -8,7 +8,9 @@ const pageSize = 50;
 /** All on one page is for paper; no state's frame is larger. */
 const largestPage = 5_000;
 
-export type Disposition = "complete" | "partial" | "refused" | "not_reached" | "undeliverable" | "not_eligible";
+/** `reached`: spoken to, and no answer yet. */
+export type Disposition =
+	"complete" | "partial" | "refused" | "reached" | "not_reached" | "undeliverable" | "not_eligible";
 export type FrameRow = {
 	operationId: string;
 	name: string;
@@ -80,7 +82,8 @@ const sortColumn = {
 	name: sql.ref("o.name"),
 	county: sql.ref("c.name"),
 	// From done to out of reach, as one works through the list.
-	disposition: sql`array_position(array['complete', 'partial', 'not_reached', 'undeliverable', 'refused', 'not_eligible'],
+	disposition: sql`array_position(array['complete', 'partial', 'reached', 'not_reached', 'undeliverable', 'refused',
+		'not_eligible'],
 		f.disposition)`,
 	answered: sql.ref("r.submitted_at"),
 };

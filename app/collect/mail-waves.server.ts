@@ -21,7 +21,7 @@ export const answered = sql<boolean>`exists (select from collect.response r wher
 /** Has an address that takes mail, and wants some. */
 const reachable = sql<boolean>`(coalesce(o.email, '') <> '' and o.mail_returned_at is null and o.mail_wanted and o.status = 'active')`;
 /** Can be written to, has not answered, and has neither refused nor been found to be out of the survey. */
-export const awaited = sql<boolean>`(${reachable} and not ${answered} and f.disposition in ('not_reached', 'partial'))`;
+export const awaited = sql<boolean>`(${reachable} and not ${answered} and f.disposition in ('not_reached', 'reached', 'partial'))`;
 /** An invitation is on its way or was sent; one that was given up invited nobody. */
 export const invited = sql<boolean>`exists (select from collect.mailing m where m.survey_id = f.survey_id
 	and m.operation_id = f.operation_id and m.kind = 'invitation' and m.failed_at is null)`;

@@ -134,7 +134,7 @@ export async function startResponse(
 		.set({ disposition: "partial", disposition_at: sql`now()` })
 		.where("survey_id", "=", surveyId)
 		.where("operation_id", "=", operationId)
-		.where("disposition", "in", ["not_reached", "undeliverable"])
+		.where("disposition", "in", ["reached", "not_reached", "undeliverable"])
 		.execute();
 	await logEvent(trx, {
 		personId: viewer.person?.personId ?? null,

@@ -77,7 +77,7 @@ export async function extendSurvey(trx: Trx, viewer: Associate, surveyId: string
 }
 
 /** A draft that failed or was sent back holds nothing up: it is made anew after the survey has closed again. */
-async function hasDraftedRelease(trx: Trx, surveyId: string): Promise<boolean> {
+export async function hasDraftedRelease(trx: Trx, surveyId: string): Promise<boolean> {
 	const drafts = await trx
 		.selectFrom("collect.release_draft")
 		.select("release_draft_id")

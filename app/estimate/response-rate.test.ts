@@ -90,6 +90,14 @@ describe("response of a frame", () => {
 		expect(counted.rr2).toBe(counted.rr1);
 	});
 
+	test("who was spoken to is known to belong, so that the rates among those fall and the widest stays", () => {
+		const moved = counts.map((count) => (count.disposition === "not_reached" ? { ...count, operations: 40 } : count));
+		const reached = { disposition: "reached" as const, operations: 10, bearingTrees: 0 };
+		const { counted } = frameResponse([...moved, reached]);
+		expect(counted).toMatchObject({ rr1: 0.3, rr5: 0.6 });
+		expect(counted.rr3).toBeCloseTo(30 / (50 + (50 / 60) * 50), 12);
+	});
+
 	test("parts of a frame add to the whole", () => {
 		const halves = counts.flatMap((count) => [
 			{ ...count, operations: count.operations - 2, bearingTrees: count.bearingTrees },

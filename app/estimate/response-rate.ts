@@ -61,13 +61,14 @@ export function responseRates(outcomes: Outcomes, eligibleShare?: number): Respo
 
 /**
  * Where each disposition of a frame counts. The frame is a list: an operation that was never reached, or whose mail came
- * back, has given no sign that it still grows the crop. Answers begun and not sent in are no answer, so that they count
- * with those who broke off.
+ * back, has given no sign that it still grows the crop; one that was spoken to has. Answers begun and not sent in are no
+ * answer, so that they count with those who broke off.
  */
 export const outcomeOf: Record<Disposition, keyof Outcomes> = {
 	complete: "complete",
 	partial: "refused",
 	refused: "refused",
+	reached: "otherwise",
 	not_reached: "unknown",
 	undeliverable: "unknown",
 	not_eligible: "notEligible",

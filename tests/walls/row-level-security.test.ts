@@ -41,6 +41,9 @@ const guarded: Record<string, Guarded> = {
 	"directory.import": { key: "import_id", state: "state_fips", states: "{55}", desk: all, grower: "nothing" },
 	"directory.import_row": { key: "operation_id", desk: all, grower: all },
 	"collect.contact": { key: "operation_id", desk: all, grower: all },
+	// What an associate is typing of a grower's answers goes with the grower who leaves, so the grower's scope reaches it.
+	"collect.entry_draft": { key: "operation_id", desk: all, grower: all },
+	"collect.late_decision": { key: "response_id", desk: ["insert"], grower: [] },
 	"collect.frame_operation": { key: "operation_id", state: "state_fips", desk: write, grower: write },
 	"collect.frame_crop": { key: "operation_id", desk: write, grower: write },
 	"collect.mailing": { key: "operation_id", desk: write, grower: write },

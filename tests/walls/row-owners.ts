@@ -122,6 +122,16 @@ async function addHolder(owner: Client, { surveyId, draftId, personId }: Shared,
 		responseId,
 	]);
 	await owner.query(
+		`insert into collect.late_decision (response_id, version, taken, reason, decided_by)
+		select $1, 1, true, 'on the road', person_id from auth.person limit 1`,
+		[responseId],
+	);
+	await owner.query(
+		`insert into collect.entry_draft (survey_id, operation_id, person_id, mode, typed)
+		select $1, $2, person_id, 'telephone', '{}' from auth.person limit 1`,
+		ids,
+	);
+	await owner.query(
 		`insert into collect.photo (photo_id, response_id, question_key, file_name, width_px, height_px, size_bytes)
 		values (gen_random_uuid(), $1::uuid, 'photos', md5($1::uuid::text), 1600, 1200, 400000)`,
 		[responseId],

@@ -26,6 +26,7 @@ import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { MergedNotice } from "./parts/merging/merged-notice.tsx";
 import { AddressForm } from "./parts/address-form.tsx";
+import { useContactLabels } from "./parts/growers/contact-fields.tsx";
 import { Contacts } from "./parts/growers/contacts.tsx";
 import { People } from "./parts/growers/people.tsx";
 import { useGrowerName } from "./parts/grower-name.ts";
@@ -53,7 +54,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 
 const Step = z.discriminatedUnion("step", [
 	z.object({ step: z.literal("link"), surveyId: z.guid(), wave: z.coerce.number().int().min(1) }),
-	ContactForm.extend({ step: z.literal("contact") }),
+	ContactForm.safeExtend({ step: z.literal("contact") }),
 	z.object({ step: z.literal("address"), email: z.email("email_wrong").max(254, "too_long").optional() }),
 	z.object({ step: z.enum(["allow", "disallow"]) }),
 ]);
@@ -109,6 +110,7 @@ export default function GrowerPage({ loaderData, actionData }: Route.ComponentPr
 	const ofContact = sent === "contact" ? { values: actionData?.values, problems: actionData?.problems } : {};
 	const ofAddress = sent === "address" ? { values: actionData?.values, problems: actionData?.problems } : {};
 	const nameOf = useGrowerName();
+	const contactLabels = useContactLabels();
 	return (
 		<Page
 			title={nameOf(operation.name)}
@@ -126,10 +128,7 @@ export default function GrowerPage({ loaderData, actionData }: Route.ComponentPr
 			<p className="no-print mb-4">
 				<Link to={href("/desk/growers")}>{t("grower.back")}</Link>
 			</p>
-			<ErrorSummary
-				problems={actionData?.problems}
-				labels={{ email: t("grower.email"), note: t("growers:contact.note"), nextOn: t("growers:contact.nextOn") }}
-			/>
+			<ErrorSummary problems={actionData?.problems} labels={{ ...contactLabels, email: t("grower.email") }} />
 			{actionData?.refused && <Notice tone="attention">{t(`grower.refused.${actionData.refused}`)}</Notice>}
 			<Contact operation={operation} />
 			<MergedNotice operation={operation} />

@@ -2,6 +2,7 @@ import { useTranslation } from "react-i18next";
 import { href, Link } from "react-router";
 import type { Route } from "./+types/overview";
 import { requireAssociate } from "#app/auth/guard.server.ts";
+import { countDueCalls } from "#app/collect/calls.server.ts";
 import { CountQuery } from "#app/collect/desk-lists.schema.ts";
 import { countMailings } from "#app/collect/invitations.server.ts";
 import { listCountyCounts } from "#app/collect/response-counts.server.ts";
@@ -30,7 +31,8 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 		const open = [];
 		for (const survey of out) {
 			const mailings = await countMailings(trx, viewer, survey.surveyId);
-			open.push({ ...survey, mailings, closesSoon: survey.closesAt.getTime() <= soon });
+			const dueCalls = await countDueCalls(trx, viewer, survey.surveyId);
+			open.push({ ...survey, mailings, dueCalls, closesSoon: survey.closesAt.getTime() <= soon });
 		}
 		const counted = open.find((survey) => survey.surveyId === query.survey) ?? open[0];
 		return {

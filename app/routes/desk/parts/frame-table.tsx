@@ -12,6 +12,7 @@ import { MailState } from "./mail-state.tsx";
 export const dispositionTones = {
 	complete: "good",
 	partial: "attention",
+	reached: "attention",
 	not_reached: "neutral",
 	undeliverable: "stop",
 	refused: "neutral",

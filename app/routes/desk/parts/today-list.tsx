@@ -11,6 +11,7 @@ type OpenSurvey = Named & {
 	timeZone: string;
 	closesSoon: boolean;
 	mailings: { toInvite: number; withoutAddress: number };
+	dueCalls: number;
 };
 type TodayListProps = { open: OpenSurvey[]; drafts: Named[]; releases: (Named & { work: string })[] };
 type Task = { key: string; to: string; text: string };
@@ -54,6 +55,15 @@ function useTasks({ open, drafts, releases }: TodayListProps): Task[] {
 			text: t("overview.task.closesSoon", {
 				survey: nameOf(survey),
 				moment: format.moment(survey.closesAt, survey.timeZone),
+			}),
+		},
+		survey.dueCalls > 0 && {
+			key: `calls ${survey.surveyId}`,
+			to: `${href("/desk/surveys/:surveyId/calls", { surveyId: survey.surveyId })}?show=due`,
+			text: t("answered:calls.task", {
+				survey: nameOf(survey),
+				count: survey.dueCalls,
+				value: format.number(survey.dueCalls),
 			}),
 		},
 		survey.mailings.toInvite > 0 && {

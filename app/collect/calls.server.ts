@@ -1,0 +1,162 @@
+import { sql } from "kysely";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
+import type { CallQuery, ContactOutcome } from "./contacts.schema.ts";
+import type { Disposition } from "./frame-list.server.ts";
+
+const pageSize = 50;
+
+/** Operations and answers of one county's part of a stratum, in the viewer's states; who does not belong is not counted. */
+export async function listCallCells(trx: Trx, viewer: Associate, surveyId: string) {
+	return trx
+		.with("trees", (db) =>
+			db
+				.selectFrom("collect.frame_crop")
+				.where("survey_id", "=", surveyId)
+				.groupBy("operation_id")
+				.select(["operation_id", sql<number>`sum(bearing_trees)::float8`.as("bearing_trees")]),
+		)
+		.selectFrom("collect.frame_operation as f")
+		.leftJoin("trees as t", "t.operation_id", "f.operation_id")
+		.where("f.survey_id", "=", surveyId)
+		.where("f.state_fips", "in", viewer.stateFips)
+		.where("f.disposition", "!=", "not_eligible")
+		.groupBy(["f.county_fips", "f.stratum_key"])
+		.orderBy("f.county_fips")
+		.orderBy("f.stratum_key")
+		.select(["f.county_fips as countyFips", "f.stratum_key as stratumKey"])
+		.select([
+			sql<number>`count(*)::int`.as("frameSize"),
+			sql<number>`count(*) filter (where f.disposition = 'complete')::int`.as("answered"),
+			sql<number>`coalesce(sum(t.bearing_trees), 0)::float8`.as("bearingTrees"),
+		])
+		.execute();
+}
+
+/** A cell with what one more answer from it is worth, as `worthOfCalls` tells it. */
+export type WorthCell = { countyFips: string; stratumKey: string; frameSize: number; answered: number } & {
+	worth: number;
+	share: number;
+};
+export type CallRow = {
+	operationId: string;
+	name: string;
+	contactName: string;
+	phone: string | null;
+	countyName: string;
+	statePostal: string;
+	timeZone: string;
+	disposition: Disposition;
+	bearingTrees: number;
+	/** The newest contact about this survey, or about none; null before the first. */
+	outcome: ContactOutcome | null;
+	madeAt: Date | null;
+	note: string | null;
+	nextOn: string | null;
+	nextTime: string | null;
+	/** Promised for today, or for a day that has gone by. */
+	due: boolean;
+	/** Answered of asked in the operation's county and stratum, and what one more takes off the county's variance. */
+	answeredHere: number;
+	askedHere: number;
+	share: number;
+};
+
+const today = sql`(now() at time zone z.time_zone)::date`;
+const isDue = sql<boolean>`coalesce(c.next_on <= ${today}, false)`;
+/** Those who were asked, have sent nothing in and have not said that they will not. */
+const isWaitedFor = sql`f.disposition in ('not_reached', 'undeliverable', 'reached', 'partial') and o.status = 'active'
+	and not exists (select from collect.response r where r.survey_id = f.survey_id and r.operation_id = f.operation_id
+		and (r.submitted_at is not null or r.late_at is not null or r.withdrawn_at is not null))`;
+const shown = {
+	all: sql`true`,
+	to_call: sql`(c.next_on is null or c.next_on <= ${today})`,
+	due: sql`c.next_on <= ${today}`,
+	later: sql`c.next_on > ${today}`,
+};
+
+/** The frame with everybody's newest contact: made in one pass, since most have none and a look-up each would cost more. */
+const waitedFor = (viewer: Associate, surveyId: string) => sql`collect.frame_operation f
+	join directory.operation o on o.operation_id = f.operation_id
+	join directory.state z on z.state_fips = f.state_fips
+	left join (select distinct on (n.operation_id) n.* from collect.contact n
+		where n.operation_id in (select operation_id from collect.frame_operation where survey_id = ${surveyId})
+			and (n.survey_id is null or n.survey_id = ${surveyId})
+		order by n.operation_id, n.made_at desc, n.contact_id) c on c.operation_id = f.operation_id
+	where f.survey_id = ${surveyId} and f.state_fips = any (${viewer.stateFips}) and ${isWaitedFor}`;
+
+/** By name of the operation or its contact, or by the number on its paper form. */
+function matching({ q, show, state }: CallQuery) {
+	const pattern = `%${q.replace(/[\\%_]/g, String.raw`\$&`)}%`;
+	const named = sql`(o.name ilike ${pattern} or o.contact_name ilike ${pattern}
+		or left(f.operation_id::text, 8) = ${q.toLowerCase()})`;
+	return sql`${shown[show]} and ${q === "" ? sql`true` : named} and ${state === "all" ? sql`true` : sql`f.state_fips = ${state}`}`;
+}
+
+/**
+ * A page of the calls to make: what was promised for today first, then where an answer is worth most; within one county and
+ * stratum larger orchards first. Who was tried today comes after those who were not. Ties are ordered by id.
+ */
+export async function listCalls(
+	trx: Trx,
+	viewer: Associate,
+	surveyId: string,
+	query: CallQuery,
+	cells: readonly WorthCell[],
+) {
+	const frame = sql`${waitedFor(viewer, surveyId)} and ${matching(query)}`;
+	const counted = await sql<{ total: number }>`select count(*)::int as total from ${frame}`.execute(trx);
+	const total = counted.rows[0]!.total;
+	const pageCount = Math.max(1, Math.ceil(total / pageSize));
+	const page = Math.min(query.page, pageCount);
+	const { rows } = await sql<CallRow>`
+		with waited as materialized (select f.operation_id, f.county_fips, f.stratum_key, f.disposition, o.name, o.contact_name,
+				o.phone, z.postal, z.time_zone, c.outcome, c.made_at, c.note, c.next_on, c.next_time, ${isDue} as due,
+				coalesce((c.made_at at time zone z.time_zone)::date = ${today}, false) as tried_today
+			from ${frame}),
+		trees as (select operation_id, sum(bearing_trees)::float8 as bearing_trees from collect.frame_crop
+			where survey_id = ${surveyId} group by 1),
+		cell as (select * from jsonb_to_recordset(${JSON.stringify(cells)}::jsonb) as w ("countyFips" text,
+			"stratumKey" text, worth float8, share float8, answered int, "frameSize" int))
+		select w.operation_id as "operationId", w.name, w.contact_name as "contactName", w.phone, k.name as "countyName",
+			w.postal as "statePostal", w.time_zone as "timeZone", w.disposition,
+			coalesce(t.bearing_trees, 0) as "bearingTrees", w.outcome, w.made_at as "madeAt", w.note, w.next_on as "nextOn",
+			to_char(w.next_time, 'HH24:MI') as "nextTime", w.due, coalesce(e.answered, 0) as "answeredHere",
+			coalesce(e."frameSize", 0) as "askedHere", coalesce(e.share, 0) as share
+		from waited w join directory.county k on k.county_fips = w.county_fips
+			left join trees t on t.operation_id = w.operation_id
+			left join cell e on e."countyFips" = w.county_fips and e."stratumKey" = w.stratum_key
+		order by w.due desc, case when w.due then w.next_on end, case when w.due then w.next_time end, w.tried_today,
+			coalesce(e.worth, 0) desc, t.bearing_trees desc nulls last, w.operation_id
+		limit ${pageSize} offset ${(page - 1) * pageSize}`.execute(trx);
+	return { rows, total, page, pageCount };
+}
+
+/** How many calls were promised for today, or for a day that has gone by. */
+export async function countDueCalls(trx: Trx, viewer: Associate, surveyId: string): Promise<number> {
+	const { rows } = await sql<{ due: number }>`select count(*)::int as due
+		from ${waitedFor(viewer, surveyId)} and ${shown.due}`.execute(trx);
+	return rows[0]!.due;
+}
+
+/** Who is on the line: an operation of the survey's frame in the viewer's states, whatever became of it. */
+export async function findCall(
+	trx: Trx,
+	viewer: Associate,
+	{ surveyId, operationId }: { surveyId: string; operationId: string },
+) {
+	return trx
+		.selectFrom("collect.frame_operation as f")
+		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
+		.innerJoin("directory.county as k", "k.county_fips", "f.county_fips")
+		.innerJoin("directory.state as z", "z.state_fips", "f.state_fips")
+		.where("f.survey_id", "=", surveyId)
+		.where("f.operation_id", "=", operationId)
+		.where("f.state_fips", "in", viewer.stateFips)
+		.where("o.status", "=", "active")
+		.select(["o.operation_id as operationId", "o.name", "o.contact_name as contactName", "o.phone", "o.email"])
+		.select(["o.language", "k.name as countyName", "z.postal as statePostal", "z.time_zone as timeZone"])
+		.select(sql<Disposition>`f.disposition`.as("disposition"))
+		.executeTakeFirst();
+}
+export type Call = NonNullable<Awaited<ReturnType<typeof findCall>>>;
