@@ -37,6 +37,19 @@ export interface AuthAccessRequest {
   requested_at: Generated<Timestamp>;
 }
 
+export interface AuthApiKey {
+  api_key_id: Generated<string>;
+  created_at: Generated<Timestamp>;
+  expires_at: Timestamp;
+  key_hash: string;
+  key_start: string;
+  label: string;
+  last_used_at: Timestamp | null;
+  person_id: string;
+  revoked_at: Timestamp | null;
+  scopes: string[];
+}
+
 export interface AuthPerson {
   created_at: Generated<Timestamp>;
   display_name: string;
@@ -597,6 +610,17 @@ export interface ReleaseFigure {
   value: number | null;
 }
 
+export interface ReleaseFile {
+  byte_count: number;
+  content: Buffer;
+  made_at: Generated<Timestamp>;
+  media_type: string;
+  name: string;
+  position: number;
+  release_id: string;
+  sha256: string;
+}
+
 export interface ReleaseMeasure {
   decimals: number;
   description: Json;
@@ -636,6 +660,7 @@ export interface ReleaseWithdrawal {
 
 export interface DB {
   "auth.access_request": AuthAccessRequest;
+  "auth.api_key": AuthApiKey;
   "auth.person": AuthPerson;
   "auth.role_grant": AuthRoleGrant;
   "auth.session": AuthSession;
@@ -686,6 +711,7 @@ export interface DB {
   "release.area": ReleaseArea;
   "release.cell": ReleaseCell;
   "release.figure": ReleaseFigure;
+  "release.file": ReleaseFile;
   "release.measure": ReleaseMeasure;
   "release.release": ReleaseRelease;
   "release.withdrawal": ReleaseWithdrawal;

@@ -3,6 +3,7 @@ import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { log } from "#app/lib/log.server.ts";
 import { type NotPublished, type Published, publishRelease } from "#app/release/publish.server.ts";
+import { filesJobKey } from "./make-release-files.server.ts";
 import { queueJob } from "./queue.server.ts";
 
 /** One job a draft: a new minute takes the place of the one before. */
@@ -22,6 +23,7 @@ export async function publishApproved(
 	const { releaseId, number } = outcome;
 	const subject = { subjectKind: "release", subjectId: releaseId, detail: { number } };
 	await logEvent(trx, { personId, action: "release.published", ...subject });
+	await queueJob(trx, "make_release_files", { releaseId }, { jobKey: filesJobKey(releaseId) });
 	await queueJob(trx, "thank_growers", { releaseDraftId }, { jobKey: `thank_growers:${releaseDraftId}` });
 	return outcome;
 }

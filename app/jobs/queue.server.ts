@@ -11,6 +11,8 @@ export type JobPayloads = {
 	thank_growers: { releaseDraftId: string };
 	compute_release_draft: { releaseDraftId: string };
 	publish_release: { releaseDraftId: string };
+	/** The data files of a release, made once after it is published. */
+	make_release_files: { releaseId: string };
 	/** The files of photos that were taken away. */
 	erase_photos: { fileNames: string[] };
 	sweep_photos: Record<string, unknown>;

@@ -5,6 +5,7 @@ import { letterKinds } from "#app/mail/templates.ts";
 import { checkAnswers, checkSurveys } from "./check-answers.server.ts";
 import { computeReleaseDraft } from "./compute-release-draft.server.ts";
 import { importGrowers, sweepImports } from "./import-growers.server.ts";
+import { makeReleaseFiles } from "./make-release-files.server.ts";
 import { erasePhotoFiles, sweepPhotos } from "./photos.server.ts";
 import { publishAtItsMinute } from "./publish-release.server.ts";
 import type { JobPayloads } from "./queue.server.ts";
@@ -19,6 +20,7 @@ function task<P>(schema: z.ZodType<P>, work: (payload: P, lastTry: boolean) => P
 }
 
 /** What a worker does when it starts. */
+export { queueMissingFiles } from "./make-release-files.server.ts";
 export { setReminderAlarms } from "./send-reminders.server.ts";
 
 export const tasks: Record<keyof JobPayloads, Task> = {
@@ -31,6 +33,7 @@ export const tasks: Record<keyof JobPayloads, Task> = {
 	thank_growers: task(z.object({ releaseDraftId: z.uuid() }), thankGrowers),
 	compute_release_draft: task(z.object({ releaseDraftId: z.uuid() }), (payload) => computeReleaseDraft(payload)),
 	publish_release: task(z.object({ releaseDraftId: z.uuid() }), publishAtItsMinute),
+	make_release_files: task(z.object({ releaseId: z.uuid() }), makeReleaseFiles),
 	erase_photos: task(z.object({ fileNames: z.array(z.string().regex(/^[0-9a-f]{32}$/)) }), erasePhotoFiles),
 	sweep_photos: task(z.looseObject({}), sweepPhotos),
 	import_growers: task(

@@ -7,9 +7,9 @@ import { i18nextSettings } from "#app/i18n/settings.ts";
 const instance = createInstance({ ...i18nextSettings, lng: "en", resources });
 let ready: Promise<unknown> | undefined;
 
-/** The translating function of mail in the addressee's language. */
-export async function mailWords(language: Language) {
+/** The translating function of a job: of mail in the addressee's language, or of another namespace. */
+export async function mailWords(language: Language, namespace: "mail" | "dataroom" = "mail") {
 	ready ??= instance.init();
 	await ready;
-	return instance.getFixedT(language, "mail");
+	return instance.getFixedT(language, namespace);
 }

@@ -28,7 +28,8 @@ export function problem(status: 400 | 404 | 410, title: string): Response {
 	});
 }
 
-function matches(header: string | null, etag: string): boolean {
+/** Whether `If-None-Match` names this version, weakly compared as a GET does (RFC 9110, 13.1.2). */
+export function matches(header: string | null, etag: string): boolean {
 	if (!header) return false;
 	return header.split(",").some((tag) => ["*", etag, `W/${etag}`].includes(tag.trim()));
 }

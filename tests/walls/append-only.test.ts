@@ -31,6 +31,11 @@ beforeAll(async () => {
 		`insert into release.withdrawal (release_id, reason) values ($1, '{"en": "Wrong.", "es": "Mal."}')`,
 		[withdrawn.releaseId],
 	);
+	await owner.query(
+		`insert into release.file (release_id, name, position, media_type, content, byte_count, sha256)
+		values ($1, 'cells.csv', 0, 'text/csv', 'a', 1, encode(sha256('a'), 'hex'))`,
+		[releaseId],
+	);
 	await owner.query("insert into log.download (person_id, release_id, file_key) values ($1, $2, 'cells.csv')", [
 		personId,
 		releaseId,

@@ -1,34 +1,29 @@
 import type { Route } from "./+types/file";
 import { requireResearcher } from "#app/auth/guard.server.ts";
 import { recordDownload } from "#app/auth/research-access.server.ts";
-import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { codebookCsv } from "#app/publish/codebook.ts";
-import { listDataRows } from "#app/publish/data-file.server.ts";
-import { cellsCsv } from "#app/publish/data-file.ts";
-import { findRelease, listMeasures } from "#app/publish/releases.server.ts";
-
-const files = ["cells.csv", "codebook.csv"] as const;
+import { findRelease } from "#app/publish/releases.server.ts";
+import { listFiles } from "#app/publish/release-files.server.ts";
+import { serveFile } from "#app/publish/serve-file.server.ts";
 
 /** A file of a release, for researchers; each taking is recorded, without a profile of the taker. */
-export async function loader({ context, params }: Route.LoaderArgs) {
+export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const researcher = requireResearcher(context);
-	const file = files.find((name) => name === params.file);
 	const release = /^\d{1,9}$/.test(params.release) ? await findRelease(Number(params.release)) : undefined;
-	if (!file || !release) throw refusal("release_not_found");
+	if (!release) throw refusal("release_not_found");
 	if (release.withdrawn) throw refusal("release_withdrawn");
+	const files = await listFiles(release.releaseId);
+	// Published a moment ago: the files come within a minute.
+	if (files.length === 0) throw refusal("service_away");
+	const file = files.find(({ name }) => name === params.file);
+	if (!file) throw refusal("page_not_found");
 
-	const language = getLanguage(context);
-	const body =
-		file === "cells.csv"
-			? cellsCsv(release, await listDataRows(release.releaseId))
-			: codebookCsv(await listMeasures(release.releaseId), language, getT(context, "dataroom"));
-	await recordDownload(researcher, release.releaseId, file);
-	return new Response(body, {
-		headers: {
-			"content-type": "text/csv; charset=utf-8; header=present",
-			"content-disposition": `attachment; filename="tallygrove-release-${release.number}-${file}"`,
-			"content-language": file === "codebook.csv" ? language : "en",
-		},
-	});
+	const name = file.name.includes(`${release.number}`)
+		? file.name
+		: `tallygrove-release-${release.number}-${file.name}`;
+	const response = await serveFile(request, release.releaseId, file, { name, visibility: "private" });
+	if (response.status === 200 || response.status === 206) {
+		await recordDownload(researcher, release.releaseId, file.name);
+	}
+	return response;
 }

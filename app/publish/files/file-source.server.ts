@@ -1,0 +1,31 @@
+import type { Language } from "#app/i18n/language.ts";
+import type { TFunction } from "i18next";
+import { listDataRows } from "../data-file.server.ts";
+import { toRecord } from "../data-file.ts";
+import { findReleaseById, listAreas, listCrops, listMeasures } from "../releases.server.ts";
+import type { FileSource } from "./release-file.ts";
+
+/** Everything that a release's files are made from, read as the reader; undefined for one that is withdrawn or not there. */
+export async function findFileSource(
+	releaseId: string,
+	words: Record<Language, TFunction>,
+	site: string,
+): Promise<FileSource | undefined> {
+	const release = await findReleaseById(releaseId);
+	if (!release || release.withdrawn) return undefined;
+	const [measures, areas, crops, rows] = await Promise.all([
+		listMeasures(releaseId),
+		listAreas(releaseId),
+		listCrops(releaseId),
+		listDataRows(releaseId),
+	]);
+	return {
+		release,
+		measures,
+		areas: areas.toSorted((a, b) => (a.key < b.key ? -1 : 1)),
+		crops,
+		records: rows.map((row) => toRecord(release, row)),
+		words,
+		address: `${site}/data/${release.number}`,
+	};
+}

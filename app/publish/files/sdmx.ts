@@ -1,0 +1,126 @@
+import { toCsv } from "../data-file.ts";
+import type { FileSource } from "./release-file.ts";
+import { agency, codeLists, confidentiality, sdmxId, version } from "./sdmx-codes.ts";
+
+const dimensions = ["FREQ", "REF_AREA", "TIME_PERIOD", "CROP", "MEASURE"] as const;
+const numbers = ["STANDARD_ERROR", "CV", "LOWER", "UPPER", "FIRST_QUARTILE", "THIRD_QUARTILE"] as const;
+const words = ["RESPONDENTS_BAND", "STEADINESS", "UNIT_MEASURE", "OBS_STATUS", "CONF_STATUS"] as const;
+
+const structureId = (number: number) => `RELEASE_${number}`;
+
+/**
+ * The cells as SDMX-CSV 2.0. A value that is missing on purpose is NaN, which the format keeps apart from one that is not
+ * told; an attribute that is missing is empty. The numbers and their order are those of cells.csv.
+ */
+export function sdmxCsv({ release, measures, records }: FileSource): string {
+	const unitOf = new Map(measures.map(({ key, unit }) => [key, unit]));
+	const structure = `${agency}:${structureId(release.number)}(${version})`;
+	return toCsv(
+		["STRUCTURE", "STRUCTURE_ID", "ACTION", ...dimensions, "OBS_VALUE", ...numbers, ...words],
+		records.map((record) => [
+			"datastructure",
+			structure,
+			"R",
+			"A",
+			sdmxId(record.area_code),
+			record.season,
+			record.crop,
+			sdmxId(record.measure),
+			record.value ?? "NaN",
+			record.standard_error,
+			record.cv,
+			record.lower,
+			record.upper,
+			record.first_quartile,
+			record.third_quartile,
+			record.respondents_band,
+			record.steadiness,
+			unitOf.get(record.measure) ?? null,
+			record.status,
+			confidentiality(record.status),
+		]),
+	);
+}
+
+const listOf: Record<string, string> = {
+	FREQ: "CL_FREQ",
+	REF_AREA: "CL_AREA",
+	CROP: "CL_CROP",
+	MEASURE: "CL_MEASURE",
+	UNIT_MEASURE: "CL_UNIT",
+	STEADINESS: "CL_STEADINESS",
+	OBS_STATUS: "CL_OBS_STATUS",
+	CONF_STATUS: "CL_CONF_STATUS",
+};
+
+/** The data structure with its concepts and code lists, as an SDMX-JSON 2.0 structure message. */
+export function sdmxStructure(source: FileSource): unknown {
+	const { release } = source;
+	const maintained = { agencyID: agency, version };
+	return {
+		meta: {
+			schema: "https://json.sdmx.org/2.0.0/sdmx-json-structure-schema.json",
+			id: structureId(release.number),
+			prepared: release.publishedAt,
+			contentLanguages: ["en", "es"],
+			sender: { id: agency },
+		},
+		data: {
+			conceptSchemes: [
+				{
+					...maintained,
+					id: "CONCEPTS",
+					name: "Concepts",
+					concepts: [...dimensions, "OBS_VALUE", ...numbers, ...words].map((id) => ({ id, name: conceptName(id) })),
+				},
+			],
+			codelists: codeLists(source).map(({ id, name, codes }) => ({
+				...maintained,
+				id,
+				name,
+				codes: codes.map((code) => ({ id: code.id, name: code.names.en, names: code.names })),
+			})),
+			dataStructures: [
+				{
+					...maintained,
+					id: structureId(release.number),
+					name: release.title.en,
+					names: release.title,
+					dataStructureComponents: components(),
+				},
+			],
+		},
+	};
+}
+
+const conceptName = (id: string) => id.charAt(0) + id.slice(1).toLowerCase().replaceAll("_", " ");
+const urn = (kind: string, id: string) => `urn:sdmx:org.sdmx.infomodel.${kind}=${agency}:${id}`;
+
+function component(id: string) {
+	const list = listOf[id];
+	const dataType = (numbers as readonly string[]).includes(id) || id === "OBS_VALUE" ? "Double" : "String";
+	return {
+		id,
+		conceptIdentity: urn("conceptscheme.Concept", `CONCEPTS(${version}).${id}`),
+		localRepresentation: list
+			? { enumeration: urn("codelist.Codelist", `${list}(${version})`) }
+			: { format: { dataType: id === "TIME_PERIOD" ? "ObservationalTimePeriod" : dataType } },
+	};
+}
+
+function components() {
+	const attribute = (id: string) => ({
+		...component(id),
+		usage: id === "OBS_STATUS" || id === "CONF_STATUS" ? "mandatory" : "optional",
+		attributeRelationship: { observation: {} },
+	});
+	return {
+		dimensionList: {
+			id: "DimensionDescriptor",
+			dimensions: dimensions.filter((id) => id !== "TIME_PERIOD").map(component),
+			timeDimension: component("TIME_PERIOD"),
+		},
+		measureList: { id: "MeasureDescriptor", measures: [component("OBS_VALUE")] },
+		attributeList: { id: "AttributeDescriptor", attributes: [...numbers, ...words].map(attribute) },
+	};
+}
