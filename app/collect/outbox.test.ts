@@ -2,10 +2,12 @@ import * as fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import {
 	answered,
+	awaitsReceipt,
 	emptyOutbox,
 	type KeptAnswer,
 	letGo,
 	listUnsettled,
+	markSentIn,
 	nextToSend,
 	type Outbox,
 	refused,
@@ -33,6 +35,16 @@ describe("one phone's outbox", () => {
 		outbox = answered(sending(outbox, "b"), "b", "2", yes(1));
 		expect(nextToSend(outbox)).toBe("a");
 		expect(listUnsettled(outbox)).toEqual(["a"]);
+	});
+
+	test("answers that were sent in without a page await their receipt, until something is typed again", () => {
+		const kept = answered(typedInto(emptyOutbox, typed("1", null)), "a", "1", yes(1));
+		expect(awaitsReceipt(kept)).toBe(false);
+		const sent = markSentIn({ ...kept, sendIn: true });
+		expect(sent.sendIn).toBe(false);
+		expect(awaitsReceipt(sent)).toBe(true);
+		expect(awaitsReceipt(typedInto(sent, typed("2", "1")))).toBe(false);
+		expect(awaitsReceipt(answered(typedInto(sent, typed("2", "1")), "a", "2", yes(2)))).toBe(false);
 	});
 
 	test("what another page of the same phone typed is not overwritten while the server lacks it", () => {

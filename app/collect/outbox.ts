@@ -39,6 +39,8 @@ export type Outbox = {
 	count: number;
 	/** Whether the grower has sent the answers in and the server does not know it yet. */
 	sendIn: boolean;
+	/** Whether they were sent in while no page could show the receipt. */
+	sentIn?: boolean;
 };
 export type KeptAnswer = { kept: boolean; version: number; unread: string[]; late?: boolean };
 
@@ -74,7 +76,8 @@ export function type(
 		state: "waiting",
 		unread: [],
 	};
-	return { outbox: { ...outbox, steps: { ...outbox.steps, [stepKey]: step }, count: step.order }, outcome: "typed" };
+	const steps = { ...outbox.steps, [stepKey]: step };
+	return { outbox: { ...outbox, steps, count: step.order, sentIn: false }, outcome: "typed" };
 }
 
 /** The step to send next, in the order of typing. */
@@ -130,9 +133,19 @@ export function settle(outbox: Outbox, changes: StepChanges): Outbox {
 	return { ...outbox, steps: Object.fromEntries(steps) };
 }
 
-/** Notes that the grower has sent the answers in while there was no signal, or that they have been sent. */
+/** Notes that the grower has sent the answers in while there was no signal, or that a page sends them now. */
 export function askToSendIn(outbox: Outbox, sendIn: boolean): Outbox {
 	return { ...outbox, sendIn };
+}
+
+/** Notes that they have been sent in, for the page that is to show the receipt. */
+export function markSentIn(outbox: Outbox): Outbox {
+	return { ...outbox, sendIn: false, sentIn: true };
+}
+
+/** Whether the answers were sent in, nothing was typed since, and the receipt has not been shown. */
+export function awaitsReceipt(outbox: Outbox): boolean {
+	return outbox.sentIn === true && listUnsettled(outbox).length === 0;
 }
 
 /** Lets a step go, for the answers that the server has. */

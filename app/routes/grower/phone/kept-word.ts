@@ -22,6 +22,12 @@ export function sayKept(page: PageData, state: KeptState): void {
 	// Said again only when it changes, so that a screen reader does not repeat itself at every letter.
 	if (place.dataset.said === text) return;
 	place.dataset.said = text;
+	// A button that is there already stays: replaced under a finger, it would not be pressed.
+	const shown = place.querySelector("button");
+	if (offersBoth && shown) {
+		shown.previousSibling?.replaceWith(text);
+		return;
+	}
 	place.textContent = text;
 	if (offersBoth) {
 		const button = Object.assign(document.createElement("button"), { type: "submit", textContent: page.words.seeBoth });

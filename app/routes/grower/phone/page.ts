@@ -1,11 +1,11 @@
-import { askToSendIn, emptyOutbox, listUnsettled, settle } from "#app/collect/outbox.ts";
+import { askToSendIn, awaitsReceipt, emptyOutbox, listUnsettled, settle } from "#app/collect/outbox.ts";
 import { listenForLeaving } from "./ask-leaving.ts";
 import { startAskPage } from "./ask-page.ts";
 import { keepPack } from "./pack.ts";
 import { type BegunPage, type PageData, readPage } from "./page-data.ts";
 import { startRefusedPage } from "./refused-page.ts";
 import { startReviewPage } from "./review-page.ts";
-import { isReadyToSendIn, reviewOf } from "./send-in.ts";
+import { isReadyToSendIn, receiptOf, reviewOf } from "./send-in.ts";
 import { change, sendWaiting } from "./send.ts";
 import { sendPhotos } from "./send-photos.ts";
 import { type Held, openStore, type PhoneStore } from "./store.ts";
@@ -68,6 +68,8 @@ async function sendInWhereAsked(store: PhoneStore, responseId: string): Promise<
 	await sendWaiting(store, responseId, () => {});
 	await sendPhotos(store, responseId, () => {});
 	const held = await store.read(responseId);
+	// The worker sent them in while this page was on its way.
+	if (held && awaitsReceipt(held.outbox)) location.replace(receiptOf(held));
 	if (!isReadyToSendIn(held)) return;
 	await change(store, responseId, (outbox) => askToSendIn(outbox, false));
 	location.assign(`${reviewOf(held)}#continue`);

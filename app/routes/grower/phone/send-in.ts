@@ -1,10 +1,15 @@
-import { askToSendIn, listUnsettled } from "#app/collect/outbox.ts";
+import { listUnsettled, markSentIn } from "#app/collect/outbox.ts";
 import { change } from "./send.ts";
 import type { Held, PhoneStore } from "./store.ts";
 
 /** Where the answers are looked over and sent in. */
 export function reviewOf({ surveyId, operationId }: Pick<Held, "surveyId" | "operationId">): string {
 	return `/answer/${surveyId}/${operationId}/review`;
+}
+
+/** What is shown of answers that were sent in. */
+export function receiptOf({ surveyId, operationId }: Pick<Held, "surveyId" | "operationId">): string {
+	return `/answer/${surveyId}/${operationId}/receipt`;
 }
 
 /** Whether the grower has sent the answers in without signal, and all of them have reached the server since. */
@@ -20,5 +25,5 @@ export async function sendIn(store: PhoneStore, responseId: string): Promise<voi
 	const held = await store.read(responseId);
 	if (!isReadyToSendIn(held)) return;
 	const answer = await fetch(reviewOf(held), { method: "POST", redirect: "manual" }).catch(() => null);
-	if (answer?.type === "opaqueredirect") await change(store, responseId, (outbox) => askToSendIn(outbox, false));
+	if (answer?.type === "opaqueredirect") await change(store, responseId, markSentIn);
 }

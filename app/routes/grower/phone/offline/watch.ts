@@ -1,4 +1,5 @@
-import { isReadyToSendIn, reviewOf } from "../send-in.ts";
+import { awaitsReceipt } from "#app/collect/outbox.ts";
+import { isReadyToSendIn, receiptOf, reviewOf } from "../send-in.ts";
 import { askToSendLater } from "../send-later.ts";
 import { sendPhotos } from "../send-photos.ts";
 import { sendWaiting } from "../send.ts";
@@ -23,7 +24,9 @@ export function watchForSignal(pack: Pack): void {
 		await sendWaiting(here.store, pack.responseId, () => {});
 		await sendPhotos(here.store, pack.responseId, () => {});
 		const held = await here.store.read(pack.responseId);
-		if (isReadyToSendIn(held)) location.replace(reviewOf(held));
+		// The worker was quicker, and nothing is left to send.
+		if (held && awaitsReceipt(held.outbox)) location.replace(receiptOf(held));
+		else if (isReadyToSendIn(held)) location.replace(reviewOf(held));
 	};
 	window.addEventListener("online", () => void look());
 	window.addEventListener("offline", () => void look());
