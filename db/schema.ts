@@ -199,6 +199,17 @@ export interface CollectForm {
   created_at: Generated<Timestamp>;
   form_id: Generated<string>;
   form_key: string;
+  made_by: string | null;
+  state_fips: Generated<string[]>;
+}
+
+export interface CollectFormDraft {
+  before: Json | null;
+  draft: Json;
+  edit: Generated<number>;
+  edited_at: Generated<Timestamp>;
+  edited_by: string;
+  form_id: string;
 }
 
 export interface CollectFormVersion {
@@ -206,6 +217,7 @@ export interface CollectFormVersion {
   definition: Json;
   form_id: string;
   form_version_id: Generated<string>;
+  published_by: string | null;
   version: number;
 }
 
@@ -674,6 +686,7 @@ export interface DB {
   "collect.entry_draft": CollectEntryDraft;
   "collect.fact": CollectFact;
   "collect.form": CollectForm;
+  "collect.form_draft": CollectFormDraft;
   "collect.form_version": CollectFormVersion;
   "collect.frame_crop": CollectFrameCrop;
   "collect.frame_operation": CollectFrameOperation;

@@ -1,6 +1,8 @@
 import { isDeepStrictEqual } from "node:util";
 import type { Trx } from "#app/auth/scope.server.ts";
+import type { Words } from "#app/lib/words.ts";
 import { FormDefinition } from "./form.ts";
+import { readyForms } from "./forms/ready-forms.ts";
 
 /**
  * Stores a form as its newest version, or finds that version when nothing changed. Versions are never edited: a survey
@@ -30,6 +32,24 @@ export async function ensureForm(trx: Trx, definition: FormDefinition): Promise<
 		.returning("form_version_id")
 		.executeTakeFirstOrThrow();
 	return { formVersionId: form_version_id };
+}
+
+/** The version of a form that a new survey asks: a ready form as it ships, another one as it was last published. */
+export async function findFormToAsk(
+	trx: Trx,
+	formKey: string,
+): Promise<{ formVersionId: string; title: Words } | undefined> {
+	const ready = Object.values(readyForms).find(({ key }) => key === formKey);
+	if (ready) return { ...(await ensureForm(trx, ready)), title: ready.title };
+	const row = await trx
+		.selectFrom("collect.form_version as v")
+		.innerJoin("collect.form as f", "f.form_id", "v.form_id")
+		.select(["v.form_version_id", "v.definition"])
+		.where("f.form_key", "=", formKey)
+		.orderBy("v.version", "desc")
+		.limit(1)
+		.executeTakeFirst();
+	return row && { formVersionId: row.form_version_id, title: FormDefinition.parse(row.definition).title };
 }
 
 /** One version of a form with its questions and measures. */

@@ -1,5 +1,4 @@
 import { z } from "zod";
-import { readyFormKeys } from "./forms/ready-forms.ts";
 
 const text = (most: number) => z.string({ error: "empty" }).trim().min(1, "empty").max(most, "too_long");
 const several = (of: z.ZodType<string>) =>
@@ -15,7 +14,8 @@ export type ClosingForm = z.infer<typeof ClosingForm>;
 
 /** A survey as the desk's form sends it. Whether states are granted and crops known, the writing function checks. */
 export const SurveyDraft = ClosingForm.extend({
-	formKey: z.enum(readyFormKeys, { error: "choice_wrong" }),
+	/** Of a ready form, or of one that an associate made; whether there is such a form, the writing function checks. */
+	formKey: z.string({ error: "choice_wrong" }).max(80, "choice_wrong"),
 	season: z.coerce.number({ error: "empty" }).int("not_whole").min(2000, "season_wrong").max(2100, "season_wrong"),
 	/** Left empty, a survey is called as its form is. */
 	titleEn: z.string().trim().max(120, "too_long").optional(),

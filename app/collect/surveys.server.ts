@@ -5,8 +5,7 @@ import type { Associate } from "#app/auth/viewer.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import type { Words } from "./form.ts";
-import { readyForms } from "./forms/ready-forms.ts";
-import { ensureForm } from "./forms.server.ts";
+import { findFormToAsk } from "./forms.server.ts";
 import { momentIn } from "./survey-closing.ts";
 import type { ClosingForm, SurveyDraft } from "./survey-draft.schema.ts";
 
@@ -118,14 +117,14 @@ export async function createSurvey(trx: Trx, viewer: Associate, draft: SurveyDra
 		problems.push({ field: "states", code: "choice_wrong" });
 	const closing = await readClosing(trx, draft, now);
 	if ("problem" in closing) problems.push(closing.problem);
-	if (problems.length > 0 || "problem" in closing) return { problems };
+	const form = await findFormToAsk(trx, draft.formKey);
+	if (!form) problems.push({ field: "formKey", code: "choice_wrong" });
+	if (problems.length > 0 || "problem" in closing || !form) return { problems };
 
-	const form = readyForms[draft.formKey];
-	const { formVersionId } = await ensureForm(trx, form);
 	const survey = await trx
 		.insertInto("collect.survey")
 		.values({
-			form_version_id: formVersionId,
+			form_version_id: form.formVersionId,
 			season: draft.season,
 			title: JSON.stringify({ en: draft.titleEn || form.title.en, es: draft.titleEs || form.title.es }),
 			crop_keys: [...new Set(draft.crops)],
