@@ -92,6 +92,7 @@ export default [
 					route("mailing/:kind", "routes/desk/mail-preview.tsx"),
 					route("answered", "routes/desk/answered.tsx"),
 					route("calls", "routes/desk/calls.tsx"),
+					route("enter/:operationId", "routes/desk/enter.tsx"),
 					route("responses", "routes/desk/responses.tsx"),
 					route("responses/:responseId", "routes/desk/response.tsx"),
 					route("estimates", "routes/desk/estimates.tsx"),

@@ -15,6 +15,7 @@ import { withdrawAnswer } from "./withdrawal.server.ts";
 export async function forgetAnswers(trx: Trx, viewer: Grower, operationId: string): Promise<void> {
 	// Nobody who leaves is named in the log of what follows from it.
 	await trx.deleteFrom("collect.contact").where("operation_id", "=", operationId).execute();
+	await trx.deleteFrom("collect.entry_draft").where("operation_id", "=", operationId).execute();
 	const unnamed: Grower = { ...viewer, person: null };
 	for (const { surveyId, isOpen, responseId, definition } of await listAsked(trx, operationId)) {
 		const place = { surveyId, operationId };
@@ -23,6 +24,7 @@ export async function forgetAnswers(trx: Trx, viewer: Grower, operationId: strin
 		await replacePersonalLinks(trx, place);
 		if (responseId === null) continue;
 		await erasePhotos(trx, responseId);
+		await trx.updateTable("collect.late_decision").set({ reason: "" }).where("response_id", "=", responseId).execute();
 		if (withdrawn === "released") await dropTexts(trx, responseId, textKeys(FormDefinition.parse(definition)));
 		else await emptyResponse(trx, responseId);
 	}

@@ -105,6 +105,8 @@ export async function lockAnswering(trx: Trx, viewer: Grower, place: AnswerPlace
 	return answering.response ? { ...answering, response: answering.response } : ("not_started" as const);
 }
 
+export type LockedAnswering = Exclude<Awaited<ReturnType<typeof lockAnswering>>, string>;
+
 /** Agrees to the pledge and begins. Again changes nothing: the promise of the first time is the one that holds. */
 export async function startResponse(
 	trx: Trx,

@@ -1,3 +1,4 @@
+import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { type AnswerGroup, listAnswerLines } from "./answer-lines.ts";
 import type { Submission } from "./answer-rows.server.ts";
@@ -5,9 +6,19 @@ import type { FormDefinition } from "./form.ts";
 import { withoutErased } from "./photo-rows.server.ts";
 import type { PlantingAsked } from "./steps.ts";
 
+export type SubmissionSeen = {
+	version: number;
+	submittedAt: Date;
+	late: boolean;
+	withdrawnAt: Date | null;
+	mode: "web" | "telephone" | "paper";
+	/** Who typed it in, where the grower did not. */
+	enteredBy: string | null;
+};
+
 export type SubmissionsView = {
 	/** Each time the answers were sent in, newest first. */
-	submissions: { version: number; submittedAt: Date; late: boolean; withdrawnAt: Date | null }[];
+	submissions: SubmissionSeen[];
 	/** Which of them the groups tell of; null where none was sent in. */
 	shownVersion: number | null;
 	groups: AnswerGroup[];
@@ -25,11 +36,13 @@ export async function viewSubmissions(
 	wanted: { version?: number; withdrawn: boolean },
 ): Promise<SubmissionsView> {
 	const submissions = await trx
-		.selectFrom("collect.submission")
-		.select(["version", "submitted_at as submittedAt", "late", "withdrawn_at as withdrawnAt"])
-		.where("response_id", "=", responseId)
-		.$if(!wanted.withdrawn, (rows) => rows.where("withdrawn_at", "is", null))
-		.orderBy("version", "desc")
+		.selectFrom("collect.submission as b")
+		.leftJoin("auth.person as p", "p.person_id", "b.entered_by")
+		.select(["b.version", "b.submitted_at as submittedAt", "b.late", "b.withdrawn_at as withdrawnAt"])
+		.select([sql<SubmissionSeen["mode"]>`b.mode`.as("mode"), "p.display_name as enteredBy"])
+		.where("b.response_id", "=", responseId)
+		.$if(!wanted.withdrawn, (rows) => rows.where("b.withdrawn_at", "is", null))
+		.orderBy("b.version", "desc")
 		.execute();
 	const shown = submissions.find(({ version }) => version === wanted.version) ?? submissions[0];
 	const submission = shown && (await getSubmission(trx, responseId, shown.version));

@@ -9,7 +9,7 @@ import { findNewestSubmission, sameAnswers, type Submission } from "./answer-row
 import type { Answer } from "./form.ts";
 import { queueMail } from "./mail-waves.server.ts";
 import { findHindrance, type Hindrance } from "./progress.ts";
-import { type AnswerPlace, lockAnswering } from "./responses.server.ts";
+import { type AnswerPlace, type LockedAnswering as Locked, lockAnswering } from "./responses.server.ts";
 import { keptAnswers } from "./steps.ts";
 
 export type Submitted =
@@ -18,7 +18,6 @@ export type Submitted =
 	| "not_found"
 	| "closed"
 	| "not_started";
-type Locked = Exclude<Awaited<ReturnType<typeof lockAnswering>>, string>;
 
 /**
  * Sends an operation's answers in, for the first time or amended. Snapshot, receipt, disposition, facts and the receipt's
@@ -34,7 +33,19 @@ export async function submitResponse(
 ): Promise<Submitted> {
 	const answering = await lockAnswering(trx, viewer, place);
 	if (typeof answering === "string") return answering;
+	return sendIn(trx, viewer, answering, { language, mode: "web" });
+}
+
+/** How a version came: on the web, or typed in by an associate. */
+export type SentBy = { language: "en" | "es"; mode: "web" | "telephone" | "paper" };
+
+/**
+ * Sends in the answers of a response that the caller has locked.
+ * @param viewer the person in it is who typed them in, where that was not on the web.
+ */
+export async function sendIn(trx: Trx, viewer: Grower, answering: Locked, by: SentBy): Promise<Submitted> {
 	const { definition, plantings, response } = answering;
+	const place: AnswerPlace = answering;
 	const answers = keptAnswers(definition, plantings, answering.answers);
 	const newest = await findNewestSubmission(trx, response.responseId);
 	if (newest && response.receiptCode !== null && sameAnswers(newest.answers, answers))
@@ -44,7 +55,8 @@ export async function submitResponse(
 
 	const version = response.submittedVersion + 1;
 	const receiptCode = response.receiptCode ?? newReceiptCode();
-	await keepSubmission(trx, answering, answers, { version, receiptCode, language });
+	const enteredBy = by.mode === "web" ? null : (viewer.person?.personId ?? null);
+	await keepSubmission(trx, answering, answers, { ...by, version, receiptCode, enteredBy });
 	if (answering.isOpen) await countIn(trx, place, response.responseId);
 	await queueReceipt(trx, viewer, place, version);
 	const late = !answering.isOpen;
@@ -54,7 +66,14 @@ export async function submitResponse(
 		subjectKind: "response",
 		subjectId: response.responseId,
 		stateFips: answering.stateFips,
-		detail: { surveyId: place.surveyId, operationId: place.operationId, version, late, byLink: viewer.link !== null },
+		detail: {
+			surveyId: place.surveyId,
+			operationId: place.operationId,
+			version,
+			late,
+			byLink: viewer.link !== null,
+			mode: by.mode,
+		},
 	});
 	return { outcome: "submitted", receiptCode, version };
 }
@@ -76,15 +95,23 @@ async function keepSubmission(
 	trx: Trx,
 	{ plantings, isOpen, response: { responseId } }: Locked,
 	answers: Answer[],
-	{ version, receiptCode, language }: { version: number; receiptCode: string; language: "en" | "es" },
+	sent: SentBy & { version: number; receiptCode: string; enteredBy: string | null },
 ): Promise<void> {
+	const { version, receiptCode, language, mode, enteredBy } = sent;
 	const submission: Submission = {
 		plantings: plantings.map(({ plantingId, cropKey, bearingTrees }) => ({ plantingId, cropKey, bearingTrees })),
 		answers,
 	};
 	await trx
 		.insertInto("collect.submission")
-		.values({ response_id: responseId, version, answers: JSON.stringify(submission), late: !isOpen })
+		.values({
+			response_id: responseId,
+			version,
+			answers: JSON.stringify(submission),
+			late: !isOpen,
+			mode,
+			entered_by: enteredBy,
+		})
 		.execute();
 	await trx
 		.updateTable("collect.response")
@@ -96,6 +123,7 @@ async function keepSubmission(
 				: { late_at: sql`now()` }),
 			withdrawn_at: null,
 			language,
+			mode,
 		})
 		.where("response_id", "=", responseId)
 		.execute();

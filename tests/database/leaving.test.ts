@@ -8,6 +8,7 @@ import { scopedTransaction } from "#app/auth/scope.server.ts";
 import { sessionContext, type VisitorSession } from "#app/auth/session.server.ts";
 import type { Associate, Coordinator, Grower } from "#app/auth/viewer.ts";
 import { visitorContext } from "#app/auth/visitor.server.ts";
+import { keepEntryDraft } from "#app/collect/entry-drafts.server.ts";
 import { createPersonalLink, findLink } from "#app/collect/personal-link.server.ts";
 import type { AnswerPlace } from "#app/collect/responses.server.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
@@ -66,6 +67,8 @@ function newNames() {
 		subject: `zephyr-subject-${made}`,
 		comment: `hail at gate ${made}`,
 		unsent: `not sent ${made}`,
+		typed: `on the line ${made}`,
+		reason: `was in hospital ${made}`,
 		cultivar: `Zephyr seedling ${made}`,
 		longitude: `-91.53${made}7`,
 	};
@@ -103,6 +106,7 @@ async function grower() {
 	const open = { surveyId: await addSurvey(iowa), operationId };
 	await beginAnswering(viewer, open);
 	await typeStep(viewer, open, "next_year", { comment: names.unsent });
+	await keepDeskWork(open, closed, names);
 	return { names, operationId, personId, viewer, released, closed, open };
 }
 
@@ -129,6 +133,18 @@ async function keepListWork(operationId: string, names: Names): Promise<void> {
 		`View ${made}`,
 		JSON.stringify({ q: names.contact }),
 	]);
+}
+
+/** What an associate was typing for the grower, and why a late answer was taken in or left. */
+async function keepDeskWork(open: AnswerPlace, closed: AnswerPlace, names: Names): Promise<void> {
+	await asDesk(iowa, (trx) =>
+		keepEntryDraft(trx, iowa, open, { mode: "telephone", typed: { "next_year.comment": names.typed } }),
+	);
+	await owner.query(
+		`insert into collect.late_decision (response_id, version, taken, reason, decided_by)
+		select response_id, 1, false, $2, $3 from collect.response where survey_id = $1`,
+		[closed.surveyId, names.reason, iowa.personId],
+	);
 }
 
 function grant(personId: string, operationId: string) {
@@ -206,6 +222,8 @@ test("nothing by which a grower is known is left in any column of any table", as
 		subject: ["auth.person"],
 		comment: ["collect.answer", "collect.submission"],
 		unsent: ["collect.answer"],
+		typed: ["collect.entry_draft"],
+		reason: ["collect.late_decision"],
 		cultivar: ["directory.planting"],
 		longitude: ["directory.operation_pin"],
 	});

@@ -6,6 +6,7 @@ import { sessionContext } from "#app/auth/session.server.ts";
 import { findCall, listCalls } from "#app/collect/calls.server.ts";
 import { callFilters, CallQuery, ContactForm } from "#app/collect/contacts.schema.ts";
 import { listContacts, noteContact } from "#app/collect/contacts.server.ts";
+import { listEntryDrafts } from "#app/collect/entry-drafts.server.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
@@ -16,6 +17,7 @@ import { refusal } from "#app/lib/refusal.ts";
 import { CallCard } from "./parts/calls/call-card.tsx";
 import { CallTable } from "./parts/calls/call-table.tsx";
 import { readCallWorth } from "./parts/calls/call-worth.server.ts";
+import { EntryDrafts } from "./parts/entry/entry-drafts.tsx";
 import { useContactLabels } from "./parts/growers/contact-fields.tsx";
 
 export async function loader({ context, params, request }: Route.LoaderArgs) {
@@ -26,10 +28,12 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 		const survey = await findSurvey(trx, viewer, params.surveyId);
 		const cells = survey && (await readCallWorth(trx, viewer, survey.surveyId));
 		if (!cells) return undefined;
-		const { surveyId, stateFips } = survey;
+		const { surveyId, state, stateFips } = survey;
 		const call = query.call ? await findCall(trx, viewer, { surveyId, operationId: query.call }) : undefined;
 		if (query.call && !call) return undefined;
 		return {
+			state,
+			drafts: await listEntryDrafts(trx, viewer, surveyId),
 			states: stateFips.filter((one) => viewer.stateFips.includes(one)),
 			calls: await listCalls(trx, viewer, surveyId, query, cells),
 			call: call ? { ...call, contacts: await listContacts(trx, call.operationId) } : null,
@@ -62,14 +66,23 @@ function listAddress(request: Request): URLSearchParams {
 }
 
 /** Whom to ring next, and what came of it. */
-export default function Calls({ loaderData, actionData }: Route.ComponentProps) {
-	const { calls, call, query, states } = loaderData;
+export default function Calls({ loaderData, actionData, params }: Route.ComponentProps) {
+	const { calls, call, query, states, drafts, state } = loaderData;
 	const { t } = useTranslation("answered");
 	const labels = useContactLabels();
 	return (
 		<>
 			<ErrorSummary problems={actionData?.problems} labels={labels} />
-			{call && <CallCard key={call.operationId} call={call} {...actionData} />}
+			{call && (
+				<CallCard
+					key={call.operationId}
+					call={call}
+					surveyId={params.surveyId}
+					isOpen={state === "open"}
+					{...actionData}
+				/>
+			)}
+			<EntryDrafts drafts={drafts} surveyId={params.surveyId} />
 			<p className="mb-4 max-w-prose">{t("calls.why")}</p>
 			<SearchBar label={t("calls.search")} defaultValue={query.q}>
 				<ChoiceField

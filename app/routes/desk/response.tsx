@@ -66,6 +66,13 @@ export default function ResponsePage({ loaderData: response, params }: Route.Com
 						{ term: t("response.sentIn"), detail: <Versions response={response} /> },
 					]}
 				/>
+				{response.withdrawnAt === null && (
+					<p className="no-print mt-3">
+						<Link to={href("/desk/surveys/:surveyId/enter/:operationId", { surveyId: params.surveyId, operationId })}>
+							{t("answered:enter.change")}
+						</Link>
+					</p>
+				)}
 				{response.shownVersion === null ? (
 					<div className="mt-8">
 						<NothingSent response={response} />
@@ -107,9 +114,10 @@ function Versions({ response }: { response: Route.ComponentProps["loaderData"] }
 	if (submissions.length === 0) return t("response.notSentIn");
 	return (
 		<ul>
-			{submissions.map(({ version, submittedAt, late }) => {
+			{submissions.map(({ version, submittedAt, late, mode, enteredBy }) => {
 				const moment = format.moment(submittedAt, timeZone);
 				const words = t(late ? "response.versionLate" : "response.version", { version, moment });
+				const how = mode !== "web" && t(`answered:enter.by.${mode}`, { name: enteredBy });
 				return (
 					<li key={version}>
 						{version === shownVersion ? (
@@ -119,6 +127,7 @@ function Versions({ response }: { response: Route.ComponentProps["loaderData"] }
 								{words}
 							</Link>
 						)}
+						{how && <span className="block text-sm text-quiet">{how}</span>}
 					</li>
 				);
 			})}

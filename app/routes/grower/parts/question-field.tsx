@@ -142,7 +142,7 @@ const inputModes = {
 type UnitProps = { question: Box; planting: PlantingAsked | null; values: StepValues; label: string };
 
 /** The unit beside the box: words where there is one, a choice where a grower may tell it in several. */
-function UnitOf({ question, planting, values, label }: UnitProps) {
+export function UnitOf({ question, planting, values, label }: UnitProps) {
 	const { t } = useTranslation("grower");
 	if (question.type === "percent") return "%";
 	if (question.type !== "number") return null;

@@ -2,7 +2,7 @@ import { useTranslation } from "react-i18next";
 import { Form, href, Link, useSearchParams } from "react-router";
 import type { Call } from "#app/collect/calls.server.ts";
 import type { Contact } from "#app/collect/contacts.server.ts";
-import { Button } from "#app/components/button.tsx";
+import { Button, ButtonLink } from "#app/components/button.tsx";
 import { Section } from "#app/components/section.tsx";
 import type { FormValues, Problem } from "#app/lib/parse-form.ts";
 import { useGrowerName } from "../grower-name.ts";
@@ -12,12 +12,15 @@ import { PhoneLink } from "./phone-link.tsx";
 
 type CallCardProps = {
 	call: Call & { contacts: Contact[] };
+	surveyId: string;
+	/** Whether answers can be taken now. */
+	isOpen: boolean;
 	values?: FormValues;
 	problems?: Problem[];
 };
 
 /** The grower on the line: the number, what was said before, and what comes of it now. */
-export function CallCard({ call, values, problems }: CallCardProps) {
+export function CallCard({ call, surveyId, isOpen, values, problems }: CallCardProps) {
 	const { t } = useTranslation("answered");
 	const [search] = useSearchParams();
 	const name = useGrowerName()(call.name);
@@ -26,7 +29,17 @@ export function CallCard({ call, values, problems }: CallCardProps) {
 	list.delete("call");
 	return (
 		<div className="mb-8 border-2 border-line p-5">
-			<Section title={t("calls.with", { name })} level={3}>
+			<Section
+				title={t("calls.with", { name })}
+				level={3}
+				actions={
+					isOpen && (
+						<ButtonLink to={href("/desk/surveys/:surveyId/enter/:operationId", { surveyId, operationId })}>
+							{t("calls.enter")}
+						</ButtonLink>
+					)
+				}
+			>
 				<p className="text-lg">
 					{call.contactName} <PhoneLink phone={call.phone} />
 				</p>
