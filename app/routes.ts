@@ -30,6 +30,24 @@ export default [
 	route("map/figures/:release/:measure/:crop", "routes/public/map-figures.ts"),
 	route("dataroom/releases/:release/:file", "routes/dataroom/file.ts"),
 
+	// Programs: JSON, CSV and files, with refusals of their own kind.
+	...prefix("api/v1", [
+		index("routes/api/v1/entry.ts"),
+		route("openapi.json", "routes/api/v1/openapi.ts"),
+		route("releases", "routes/api/v1/releases.ts"),
+		...prefix("releases/:release", [
+			index("routes/api/v1/release.ts"),
+			route("measures", "routes/api/v1/measures.ts"),
+			route("crops", "routes/api/v1/crops.ts"),
+			route("areas", "routes/api/v1/areas.ts"),
+			route("cells", "routes/api/v1/cells.ts"),
+			route("geometry", "routes/api/v1/geometry.ts"),
+			route("files", "routes/api/v1/files.ts"),
+			route("files/:file", "routes/api/v1/file.ts"),
+		]),
+		route("*", "routes/api/v1/unknown.ts"),
+	]),
+
 	route("sign-in/start", "routes/public/sign-in-start.ts"),
 	route("sign-in/callback", "routes/public/sign-in-callback.ts"),
 

@@ -1,6 +1,7 @@
 import pg from "pg";
 import { RateLimiterPostgres, RateLimiterRes } from "rate-limiter-flexible";
 import { env } from "#app/lib/env.server.ts";
+import { addressOf } from "#app/lib/visitor-address.ts";
 
 /** Wrong links that one address may open before it has to wait: a household's mistakes, not a guesser's. */
 const mostTries = 60;
@@ -35,9 +36,4 @@ export async function countWrongLink(request: Request): Promise<boolean> {
 		if (error instanceof RateLimiterRes) return false;
 		throw error;
 	}
-}
-
-/** As the nearest proxy tells it; without a proxy all visitors share one count, which locks out none who has a link. */
-function addressOf(request: Request): string {
-	return request.headers.get("x-forwarded-for")?.split(",").at(-1)?.trim().slice(0, 100) || "direct";
 }

@@ -26,6 +26,7 @@ export const logActions = {
 	response: ["started", "submitted", "amended", "withdrawn"],
 	release: ["drafted", "cancelled", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
 	settings: ["changed"],
+	key: ["made", "revoked"],
 	report: ["started", "submitted", "sent_back", "published"],
 } as const;
 

@@ -3,7 +3,12 @@ import { reader } from "./reader.server.ts";
 
 /** Every measure of every cell of a release, in a fixed order, as the reader's role sees it. */
 export async function listDataRows(releaseId: string): Promise<DataRow[]> {
-	const rows = await reader()
+	return (await selectDataRows(releaseId).execute()) as DataRow[];
+}
+
+/** Measures have positions of their own, so this is one order, whoever asks. */
+export function selectDataRows(releaseId: string) {
+	return reader()
 		.selectFrom("release.cell as c")
 		.innerJoin("release.area as a", (join) =>
 			join.onRef("a.release_id", "=", "c.release_id").onRef("a.area_key", "=", "c.area_key"),
@@ -39,7 +44,5 @@ export async function listDataRows(releaseId: string): Promise<DataRow[]> {
 		.orderBy("m.position")
 		.orderBy("c.crop_key")
 		.orderBy("a.kind")
-		.orderBy("c.area_key")
-		.execute();
-	return rows as DataRow[];
+		.orderBy("c.area_key");
 }

@@ -99,6 +99,21 @@ export async function listAreas(
 	}));
 }
 
+/** How many growers answered each release in all, as the band that it publishes; none where that is withheld. */
+export async function listRespondentsBands(db: Reader = reader()): Promise<Record<string, string>> {
+	const rows = await db
+		.selectFrom("release.cell as c")
+		.innerJoin("release.area as a", (join) =>
+			join.onRef("a.release_id", "=", "c.release_id").onRef("a.area_key", "=", "c.area_key"),
+		)
+		.select(["c.release_id", "c.respondents_band"])
+		.where("a.kind", "=", "region")
+		.where("c.crop_key", "=", "all")
+		.where("c.status", "=", "shown")
+		.execute();
+	return Object.fromEntries(rows.map((row) => [row.release_id, row.respondents_band!]));
+}
+
 /** The states whose counties a release covers, as FIPS codes. */
 export async function listCoveredStates(releaseId: string, db: Reader = reader()): Promise<string[]> {
 	const rows = await db

@@ -38,6 +38,11 @@ export async function serveFile(
 	return new Response(body as BodyInit | null, { status: part ? 206 : 200, headers });
 }
 
+/** A file's name on the taker's disk tells which release it is of; the archive's own name does. */
+export function savedName(release: number, name: string): string {
+	return name.endsWith(".zip") ? name : `tallygrove-release-${release}-${name}`;
+}
+
 type Part = { first: number; last: number };
 
 /**

@@ -4,7 +4,7 @@ import { recordDownload } from "#app/auth/research-access.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { findRelease } from "#app/publish/releases.server.ts";
 import { listFiles } from "#app/publish/release-files.server.ts";
-import { serveFile } from "#app/publish/serve-file.server.ts";
+import { savedName, serveFile } from "#app/publish/serve-file.server.ts";
 
 /** A file of a release, for researchers; each taking is recorded, without a profile of the taker. */
 export async function loader({ context, params, request }: Route.LoaderArgs) {
@@ -18,9 +18,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const file = files.find(({ name }) => name === params.file);
 	if (!file) throw refusal("page_not_found");
 
-	const name = file.name.includes(`${release.number}`)
-		? file.name
-		: `tallygrove-release-${release.number}-${file.name}`;
+	const name = savedName(release.number, file.name);
 	const response = await serveFile(request, release.releaseId, file, { name, visibility: "private" });
 	if (response.status === 200 || response.status === 206) {
 		await recordDownload(researcher, release.releaseId, file.name);

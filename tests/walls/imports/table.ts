@@ -62,6 +62,7 @@ export const table: Row[] = [
 	},
 	{ folder: "app/routes/public/", values: ["app/publish/", "app/auth/", ...general], types: [] },
 	{ folder: "app/routes/dataroom/", values: ["app/publish/", "app/auth/", ...general], types: [] },
+	{ folder: "app/routes/api/v1/", values: ["app/publish/", "app/auth/", ...general], types: [] },
 	// root.tsx, routes.ts and the two entries.
 	{ folder: "app/", values: ["app/auth/", ...general], types: [] },
 
@@ -176,7 +177,7 @@ export const exceptions: { from: string; to: string; because: string }[] = [
 ];
 
 /** Files of the reader's side, which reach the database through `app/publish/reader.server.ts` and in no other way. */
-export const readersSide = ["app/routes/public/", "app/routes/dataroom/", "app/publish/"];
+export const readersSide = ["app/routes/public/", "app/routes/dataroom/", "app/routes/api/v1/", "app/publish/"];
 export const notReadersSide = ["app/publish/drafting/"];
 /** What the reader's side may reach, through however many files. Modules of app/auth ask who is there; the walk ends at them. */
 export const readersReach = [...readersSide, ...general];

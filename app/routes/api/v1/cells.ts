@@ -1,0 +1,37 @@
+import type { Route } from "./+types/cells";
+import { listCellPage } from "#app/publish/api/list-cells.server.ts";
+import { operations } from "#app/publish/api/operations.ts";
+import { listAreas, listCrops, listMeasures } from "#app/publish/releases.server.ts";
+import { answer } from "./parts/answer.server.ts";
+import { listAnswer, requireKnown, standingRelease } from "./parts/list-answer.server.ts";
+
+/** The rows of cells.csv, as many as are asked for, in the same order. */
+export function loader(args: Route.LoaderArgs) {
+	return answer(operations.cells, args, async (asked) => {
+		const release = await standingRelease(asked.params.release);
+		const { releaseId } = release;
+		const { measure, crop, area, state } = asked.query;
+		if (measure)
+			requireKnown(
+				"measure",
+				measure,
+				(await listMeasures(releaseId)).map(({ key }) => key),
+			);
+		if (crop) requireKnown("crop", crop, await listCrops(releaseId));
+		if (area || state) {
+			const areas = await listAreas(releaseId);
+			requireKnown(
+				"area",
+				area,
+				areas.map(({ key }) => key),
+			);
+			requireKnown(
+				"state",
+				state,
+				areas.flatMap(({ kind, key }) => (kind === "state" ? [key] : [])),
+			);
+		}
+		return listAnswer(operations.cells, asked, releaseId, (after) => listCellPage(release, asked.query, after));
+	});
+}
+export const action = loader;

@@ -1,0 +1,60 @@
+import type { z } from "zod";
+import { env } from "#app/lib/env.server.ts";
+import { cursorOf, type Place, placeOf, questionOf } from "#app/publish/api/cursor.server.ts";
+import type { Operation } from "#app/publish/api/operations.ts";
+import { ApiProblem } from "#app/publish/api/problem.ts";
+import { toCsv } from "#app/publish/data-file.ts";
+import type { Release } from "#app/publish/release.ts";
+import { findRelease } from "#app/publish/releases.server.ts";
+import type { Answer, Asked } from "./answer.server.ts";
+
+type Row = Record<string, string | number | null>;
+type Page = { rows: readonly Row[]; last?: Place | null };
+
+/** @throws ApiProblem 404 without such a release, 410 where its figures were withdrawn. */
+export async function standingRelease(number: number): Promise<Release> {
+	const release = await findRelease(number);
+	if (!release) throw new ApiProblem("release_not_found");
+	if (release.withdrawn) throw new ApiProblem("release_withdrawn");
+	return release;
+}
+
+/** A list, or a page of one, as JSON or CSV with the same fields in the same order. */
+export function listAnswer<O extends Operation>(
+	operation: O,
+	{ request, query, type }: Asked<O>,
+	version: string,
+	list: (after: Place | null) => Promise<Page>,
+): Answer {
+	const question = questionOf(new URL(request.url).pathname, query);
+	const after = placeOf((query as { cursor?: string }).cursor, question);
+	return {
+		version,
+		async body() {
+			const { rows, last } = await list(after);
+			const next = last ? nextAddress(request, cursorOf(last, question)) : null;
+			return { text: type === "text/csv" ? csvOf(operation.item!, rows) : JSON.stringify({ data: rows, next }), next };
+		},
+	};
+}
+
+function csvOf(item: z.ZodObject, rows: readonly Row[]): string {
+	const columns = Object.keys(item.shape);
+	return toCsv(
+		columns,
+		rows.map((row) => columns.map((column) => row[column] ?? null)),
+	);
+}
+
+function nextAddress(request: Request, cursor: string): string {
+	const { pathname, searchParams } = new URL(request.url);
+	searchParams.set("cursor", cursor);
+	return `${env().BASE_URL}${pathname}?${searchParams}`;
+}
+
+/** @throws ApiProblem 400 for a code that the release does not have, with those that it has. */
+export function requireKnown(parameter: string, given: readonly string[] | undefined, known: readonly string[]): void {
+	const listed = new Set(known);
+	if (given?.some((code) => !listed.has(code)))
+		throw new ApiProblem("bad_parameter", [{ parameter, code: "unknown_code", allowed: known }]);
+}
