@@ -16,7 +16,7 @@ export function generateSchemaTypes(ownerUrl: string, outFile: string): void {
 			"--out-file",
 			outFile,
 			"--include-pattern",
-			"(directory|collect|release|publish|auth|log).*",
+			"(directory|collect|release|publish|readership|auth|log).*",
 			"--default-schema",
 			"none",
 			"--numeric-parser",

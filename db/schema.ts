@@ -572,13 +572,17 @@ export interface LogEvent {
 }
 
 export interface PublishReport {
+  approved_by: string | null;
   author_name: string;
   content: Json;
+  correction: Json | null;
+  corrects: string | null;
   created_at: Generated<Timestamp>;
   created_by: string;
   edit: Generated<number>;
   edited_by: Generated<string[]>;
   note: string | null;
+  publish_at: Timestamp | null;
   published_at: Timestamp | null;
   published_by: string | null;
   release_id: string;
@@ -588,6 +592,72 @@ export interface PublishReport {
   submitted_at: Timestamp | null;
   updated_at: Generated<Timestamp>;
   version: Generated<number>;
+}
+
+export interface PublishReportComment {
+  author_name: string;
+  block_id: string | null;
+  body: string;
+  report_comment_id: Generated<string>;
+  report_id: string;
+  resolved_at: Timestamp | null;
+  resolved_by: string | null;
+  written_at: Generated<Timestamp>;
+  written_by: string;
+}
+
+export interface PublishReportEdit {
+  content: Json;
+  edit: number;
+  report_id: string;
+  saved_at: Generated<Timestamp>;
+  saved_by: string;
+}
+
+export interface PublishReportFile {
+  bytes: Buffer | null;
+  language: string;
+  made_at: Generated<Timestamp>;
+  problem: string | null;
+  report_id: string;
+}
+
+export interface PublishReportPhoto {
+  added_at: Generated<Timestamp>;
+  added_by: string;
+  bytes: Buffer;
+  consent_of: string;
+  consent_on: string;
+  height_px: number;
+  report_id: string;
+  report_photo_id: Generated<string>;
+  width_px: number;
+}
+
+export interface ReadershipMailing {
+  failed_as: string | null;
+  report_id: string;
+  sent_at: Timestamp | null;
+  subscriber_id: string;
+  tried_at: Timestamp | null;
+}
+
+export interface ReadershipRequest {
+  crop_keys: Generated<string[]>;
+  email: string;
+  language: string;
+  request_id: Generated<string>;
+  requested_at: Generated<Timestamp>;
+  state_fips: Generated<string[]>;
+}
+
+export interface ReadershipSubscriber {
+  confirmed_at: Generated<Timestamp>;
+  crop_keys: Generated<string[]>;
+  email: string;
+  language: string;
+  state_fips: Generated<string[]>;
+  subscriber_id: Generated<string>;
 }
 
 export interface ReleaseArea {
@@ -721,6 +791,13 @@ export interface DB {
   "log.download": LogDownload;
   "log.event": LogEvent;
   "publish.report": PublishReport;
+  "publish.report_comment": PublishReportComment;
+  "publish.report_edit": PublishReportEdit;
+  "publish.report_file": PublishReportFile;
+  "publish.report_photo": PublishReportPhoto;
+  "readership.mailing": ReadershipMailing;
+  "readership.request": ReadershipRequest;
+  "readership.subscriber": ReadershipSubscriber;
   "release.area": ReleaseArea;
   "release.cell": ReleaseCell;
   "release.figure": ReleaseFigure;

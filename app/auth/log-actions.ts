@@ -27,7 +27,7 @@ export const logActions = {
 	release: ["drafted", "cancelled", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
 	settings: ["changed"],
 	key: ["made", "revoked"],
-	report: ["started", "submitted", "sent_back", "published"],
+	report: ["started", "submitted", "sent_back", "scheduled", "unscheduled", "published", "corrected"],
 } as const;
 
 type Actions = typeof logActions;

@@ -13,6 +13,14 @@ export type JobPayloads = {
 	publish_release: { releaseDraftId: string };
 	/** The data files of a release, made once after it is published. */
 	make_release_files: { releaseId: string };
+	publish_report: { reportId: string };
+	/** The PDF of a published report. */
+	print_report: { reportId: string; language: Language };
+	/** A published report to everybody who asked for such a one, and to one of them. */
+	mail_report: { reportId: string };
+	mail_subscriber: { reportId: string; subscriberId: string };
+	confirm_subscription: { requestId: string };
+	sweep_subscriptions: Record<string, unknown>;
 	/** The files of photos that were taken away. */
 	erase_photos: { fileNames: string[] };
 	sweep_photos: Record<string, unknown>;

@@ -7,6 +7,9 @@ import { computeReleaseDraft } from "./compute-release-draft.server.ts";
 import { importGrowers, sweepImports } from "./import-growers.server.ts";
 import { makeReleaseFiles } from "./make-release-files.server.ts";
 import { erasePhotoFiles, sweepPhotos } from "./photos.server.ts";
+import { confirmSubscription, mailReport, mailSubscriber, sweepSubscriptions } from "./mail-report.server.ts";
+import { printReport } from "./print-report.server.ts";
+import { publishReportAtItsMinute } from "./publish-report.server.ts";
 import { publishAtItsMinute } from "./publish-release.server.ts";
 import type { JobPayloads } from "./queue.server.ts";
 import { sendSample } from "./sample-mail.server.ts";
@@ -34,6 +37,12 @@ export const tasks: Record<keyof JobPayloads, Task> = {
 	compute_release_draft: task(z.object({ releaseDraftId: z.uuid() }), (payload) => computeReleaseDraft(payload)),
 	publish_release: task(z.object({ releaseDraftId: z.uuid() }), publishAtItsMinute),
 	make_release_files: task(z.object({ releaseId: z.uuid() }), makeReleaseFiles),
+	publish_report: task(z.object({ reportId: z.uuid() }), publishReportAtItsMinute),
+	print_report: task(z.object({ reportId: z.uuid(), language: z.enum(languages) }), printReport),
+	mail_report: task(z.object({ reportId: z.uuid() }), mailReport),
+	mail_subscriber: task(z.object({ reportId: z.uuid(), subscriberId: z.uuid() }), mailSubscriber),
+	confirm_subscription: task(z.object({ requestId: z.uuid() }), confirmSubscription),
+	sweep_subscriptions: task(z.looseObject({}), sweepSubscriptions),
 	erase_photos: task(z.object({ fileNames: z.array(z.string().regex(/^[0-9a-f]{32}$/)) }), erasePhotoFiles),
 	sweep_photos: task(z.looseObject({}), sweepPhotos),
 	import_growers: task(

@@ -35,3 +35,12 @@ export function figureWords(figure: SaidFigure, t: TFunction, format: Formatter)
 	if (earlier) return t("report:inText.last", said);
 	return t(cell.steadiness === "care" ? "public:report.inText.care" : "public:report.inText.steady", said);
 }
+
+/** A text with its figures as one string, for titles, mail, feeds and what machines read. */
+export function textWords(
+	parts: ({ kind: "text"; text: string } | { kind: "figure"; figure: SaidFigure })[],
+	t: TFunction,
+	format: Formatter,
+): string {
+	return parts.map((part) => (part.kind === "text" ? part.text : figureWords(part.figure, t, format))).join("");
+}

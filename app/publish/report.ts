@@ -1,7 +1,7 @@
 import { z } from "zod";
 
 /** A text in both languages as it stands in a draft: either may still be empty. */
-const DraftWords = z.object({ en: z.string().default(""), es: z.string().default("") });
+export const DraftWords = z.object({ en: z.string().default(""), es: z.string().default("") });
 export type DraftWords = z.infer<typeof DraftWords>;
 
 const id = z.string().regex(/^[a-z0-9]{1,24}$/);
@@ -123,9 +123,23 @@ export function referencesOf({ title, summary, blocks }: ReportContent): Referen
 	return [...inWords(title), ...inWords(summary), ...inBlocks];
 }
 
+/** The crops that a report tells of; "all" where it tells of all together, or sets all side by side. */
+export function cropsOf(content: ReportContent): string[] {
+	const inTexts = referencesOf(content).flatMap((one) => (one.measure === cellCounts ? [] : [one.crop]));
+	const inBlocks = content.blocks.flatMap((block) => {
+		const beside = block.type === "crops" || (block.type === "chart" && !["areas", "seasons"].includes(block.chart));
+		return beside ? ["all"] : "crop" in block ? [block.crop] : [];
+	});
+	return [...new Set([...inTexts, ...inBlocks])];
+}
+
 /** Every text of a report with the name of its field in the editor's form. */
-function textsOf({ title, summary, blocks }: ReportContent): [field: string, text: string][] {
+function textsOf(
+	{ title, summary, blocks }: ReportContent,
+	correction: DraftWords | null = null,
+): [field: string, text: string][] {
 	const words: [string, DraftWords][] = [
+		...(correction ? [["correction", correction] satisfies [string, DraftWords]] : []),
 		["title", title],
 		["summary", summary],
 		...blocks.flatMap((block, index): [string, DraftWords][] =>
@@ -138,9 +152,15 @@ function textsOf({ title, summary, blocks }: ReportContent): [field: string, tex
 	]);
 }
 
-/** What keeps a report from being submitted: texts missing in a language, and no block at all. */
-export function missingWords(content: ReportContent): { field: string; code: "empty" }[] {
-	const missing = textsOf(content).flatMap(([field, text]) => (text.trim() ? [] : [field]));
+/**
+ * What keeps a report from being submitted: texts missing in a language, and no block at all.
+ * @param correction what a correction says of itself; null for a first version.
+ */
+export function missingWords(
+	content: ReportContent,
+	correction: DraftWords | null = null,
+): { field: string; code: "empty" }[] {
+	const missing = textsOf(content, correction).flatMap(([field, text]) => (text.trim() ? [] : [field]));
 	if (content.blocks.length === 0) missing.push("blocks");
 	return missing.map((field) => ({ field, code: "empty" }));
 }

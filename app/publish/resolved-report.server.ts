@@ -9,7 +9,7 @@ import { type Picture, pictureOf } from "./picture.server.ts";
 import type { Release, ReleaseMeasure } from "./release.ts";
 import { findReleaseById, listAreas, listCoveredStates } from "./releases.server.ts";
 import { type EarlierFigure, lookUp, readSource, type Source, told, type Told } from "./report-source.server.ts";
-import { type ListedReport, listPublishedReports } from "./reports.server.ts";
+import { type ListedReport, listPublishedReports, listVersions } from "./reports.server.ts";
 import { type Block, type CautionKey, type DraftWords, partsOf, type ReportContent } from "./report.ts";
 import { resolveChart, type ResolvedChart } from "./resolved-chart.server.ts";
 
@@ -116,7 +116,12 @@ function resolveText({ en, es }: DraftWords, source: Source): ResolvedText {
 }
 
 /** A published report as a list tells of it: its title and summary with their figures looked up. */
-export type ToldReport = Omit<ListedReport, "title" | "summary"> & { title: ResolvedWords; summary: ResolvedWords };
+export type ToldReport = Omit<ListedReport, "title" | "summary"> & {
+	title: ResolvedWords;
+	summary: ResolvedWords;
+	/** ISO moment of its first version. */
+	firstPublishedAt: string;
+};
 
 /** Published reports, the latest first; at most so many. */
 export async function listToldReports(most = Infinity): Promise<ToldReport[]> {
@@ -125,7 +130,8 @@ export async function listToldReports(most = Infinity): Promise<ToldReport[]> {
 		const release = await findReleaseById(report.releaseId);
 		if (!release) return [];
 		const { title, summary } = await resolveReport({ ...report, blocks: [] }, release);
-		return [{ ...report, title, summary }];
+		const first = report.version === 1 ? undefined : (await listVersions(report.slug)).at(-1);
+		return [{ ...report, title, summary, firstPublishedAt: first?.publishedAt ?? report.publishedAt }];
 	});
 	return (await Promise.all(resolved)).flat();
 }

@@ -2,13 +2,8 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import type { Say } from "#app/publish/drafting/draft-report.ts";
-import {
-	findReport,
-	publishReport,
-	saveReport,
-	sendReportBack,
-	submitReport,
-} from "#app/publish/drafting/reports.server.ts";
+import { publishReport, sendReportBack } from "#app/publish/drafting/report-approval.server.ts";
+import { findReport, saveReport, submitReport } from "#app/publish/drafting/reports.server.ts";
 import { startReport } from "#app/publish/drafting/start-report.server.ts";
 import { findRelease } from "#app/publish/releases.server.ts";
 import { findPublishedReport, listPublishedReports } from "#app/publish/reports.server.ts";

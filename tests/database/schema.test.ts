@@ -57,7 +57,7 @@ async function describe(ownerUrl: string) {
 	const db = connect(ownerUrl, { max: 1 });
 	try {
 		const columns = await sql`select table_schema, table_name, column_name, data_type, is_nullable, column_default
-			from information_schema.columns where table_schema in ('directory', 'collect', 'release', 'publish', 'auth', 'log')
+			from information_schema.columns where table_schema in ('directory', 'collect', 'release', 'publish', 'readership', 'auth', 'log')
 			order by 1, 2, 3`.execute(db);
 		const constraints =
 			await sql`select conrelid::regclass::text as on_table, conname, pg_get_constraintdef(oid) as rule

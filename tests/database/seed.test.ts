@@ -122,7 +122,7 @@ test("a second run changes nothing, and one that was cut short before the last s
 	const tables = (
 		await rowsOf<{ name: string }>(
 			`select format('%I.%I', schemaname, tablename) as name from pg_tables
-			where schemaname in ('directory', 'auth', 'collect', 'release', 'publish', 'log') order by 1`,
+			where schemaname in ('directory', 'auth', 'collect', 'release', 'publish', 'readership', 'log') order by 1`,
 		)
 	).map((table) => table.name);
 	const sums = tables.map(

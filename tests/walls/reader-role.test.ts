@@ -20,7 +20,7 @@ afterAll(async () => {
 test("the reader is refused every table and view left of the release, listed from the catalogue", async () => {
 	const { rows } = await owner.query<{ name: string }>(
 		`select format('%I.%I', n.nspname, c.relname) as name from pg_class c join pg_namespace n on n.oid = c.relnamespace
-		where n.nspname in ('directory', 'collect', 'auth', 'log') and c.relkind in ('r', 'p', 'v', 'm', 'f') order by 1`,
+		where n.nspname in ('directory', 'collect', 'readership', 'auth', 'log') and c.relkind in ('r', 'p', 'v', 'm', 'f') order by 1`,
 	);
 	expect(rows.length).toBeGreaterThan(20);
 	for (const { name } of rows) {

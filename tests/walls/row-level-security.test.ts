@@ -184,7 +184,7 @@ describe("the catalogue", () => {
 	});
 
 	test("nothing leads around the rows' guards: no view, no function with its owner's rights, no role above them", async () => {
-		const ours = "('directory', 'collect', 'release', 'publish', 'auth', 'log')";
+		const ours = "('directory', 'collect', 'release', 'publish', 'readership', 'auth', 'log')";
 		const views = `select relname from pg_class where relkind in ('v', 'm') and relnamespace::regnamespace::text in ${ours}`;
 		const functions = `select proname from pg_proc where prosecdef and pronamespace::regnamespace::text in ${ours}`;
 		const roles = `select rolname from pg_roles where rolname in ('tallygrove_app', 'tallygrove_reader')

@@ -1,7 +1,7 @@
 import { Fragment } from "react";
 import { useTranslation } from "react-i18next";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { figureWords } from "#app/lib/figure-words.ts";
+import { figureWords, textWords } from "#app/lib/figure-words.ts";
 import type { ToldFigure, ToldPart, ToldWords } from "./report-data.ts";
 
 /** A looked-up figure as words inside a sentence, in the page's language. */
@@ -13,12 +13,9 @@ export function useFigureWords() {
 
 /** A report's text as one string, for a title. */
 export function useToldText() {
-	const { i18n } = useTranslation();
-	const words = useFigureWords();
-	return (told: ToldWords): string =>
-		partsIn(told, i18n.language)
-			.map((part) => (part.kind === "text" ? part.text : words(part.figure)))
-			.join("");
+	const { t, i18n } = useTranslation();
+	const format = useFormat();
+	return (told: ToldWords): string => textWords(partsIn(told, i18n.language), t, format);
 }
 
 export function partsIn(told: ToldWords, language: string): ToldPart[] {

@@ -3,6 +3,7 @@ import {
 	type Block,
 	type BlockType,
 	blockTypes,
+	DraftWords,
 	eras,
 	type Reference,
 	referenceText,
@@ -10,7 +11,7 @@ import {
 } from "../report.ts";
 
 /**
- * What a button of the editor asks for: `save`, `submit`, `add`; with a block's id, as in `up:b3`; or `overwrite:7`, to
+ * What a button of the editor asks for: `save` (`autosave` when nobody pressed one), `submit`, `add`; with a block's id, as in `up:b3`; or `overwrite:7`, to
  * save over what somebody else saved as the seventh edit.
  */
 const Intent = z
@@ -18,7 +19,7 @@ const Intent = z
 	.default("save")
 	.transform((text, context) => {
 		const [verb = "", blockId = ""] = text.split(":");
-		const known = ["save", "submit", "add", "up", "down", "remove", "insert", "overwrite"] as const;
+		const known = ["save", "autosave", "submit", "add", "up", "down", "remove", "insert", "overwrite"] as const;
 		const found = known.find((name) => name === verb);
 		if (found) return { verb: found, blockId };
 		context.addIssue({ code: "custom", message: "wrong" });
@@ -28,6 +29,8 @@ const Intent = z
 export const EditorForm = ReportContent.extend({
 	edit: z.coerce.number().int().min(1),
 	intent: Intent,
+	/** What a correction changed and why; a first version has no such field. */
+	correction: DraftWords.optional(),
 	add: z.enum(blockTypes).optional(),
 	pick: z
 		.object({ measure: z.string(), crop: z.string(), area: z.string(), when: z.enum(eras).optional().catch(undefined) })

@@ -4,9 +4,10 @@ import { logEvent } from "#app/auth/event-log.server.ts";
 import type { LogAction } from "#app/auth/log-actions.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
-import { missingWords, ReportContent } from "../report.ts";
+import { DraftWords, missingWords, ReportContent } from "../report.ts";
+import { keepEdit } from "./report-edits.server.ts";
 
-export type ReportState = "draft" | "submitted" | "published";
+export type ReportState = "draft" | "submitted" | "scheduled" | "published";
 export type DeskReport = {
 	reportId: string;
 	slug: string;
@@ -24,8 +25,22 @@ export type DeskReport = {
 	updatedAt: string;
 	submittedAt: string | null;
 	publishedAt: string | null;
+	/** When an approved report comes out. */
+	publishAt: string | null;
 	content: ReportContent;
+	/** 1, and one more with each correction. */
+	version: number;
+	/** What a correction changed and why, as its readers see it; null for the first version. */
+	correction: DraftWords | null;
+	/** Number of the release that replaced this report's own, so that the report needs another look. */
+	replacedBy: number | null;
+	/** A later version of it is under way or published. */
+	hasLater: boolean;
 };
+
+/** Whether a report rests on figures that have been revised since, with no later version of it looking at them anew. */
+export const needsLook = ({ replacedBy, hasLater }: Pick<DeskReport, "replacedBy" | "hasLater">) =>
+	replacedBy !== null && !hasLater;
 
 /** Reports of every state of work, those waiting for approval first, then the last changed. */
 export async function listReports(trx: Trx, _viewer: Associate | Coordinator): Promise<DeskReport[]> {
@@ -57,11 +72,13 @@ export async function saveReport(
 	reportId: string,
 	edit: number,
 	content: ReportContent,
+	correction: DraftWords | null = null,
 ): Promise<Saved> {
 	const saved = await trx
 		.updateTable("publish.report")
 		.set({
 			content: JSON.stringify(content),
+			correction: correction && JSON.stringify(correction),
 			edit: edit + 1,
 			updated_at: sql`now()`,
 			edited_by: sql`array(select distinct unnest(edited_by || ${viewer.personId}::uuid))`,
@@ -71,7 +88,10 @@ export async function saveReport(
 		.where("edit", "=", edit)
 		.returning("edit")
 		.executeTakeFirst();
-	if (saved) return { outcome: "saved", edit: saved.edit };
+	if (saved) {
+		await keepEdit(trx, viewer, reportId, saved.edit, content);
+		return { outcome: "saved", edit: saved.edit };
+	}
 	const now = await findReport(trx, viewer, reportId);
 	return now?.state === "draft" ? { outcome: "conflict", edit: now.edit } : { outcome: "not_draft" };
 }
@@ -86,57 +106,15 @@ export async function submitReport(
 	if (!report) return "not_found";
 	if (report.state === "submitted") return "submitted";
 	if (report.state !== "draft") return "not_draft";
-	if (missingWords(report.content).length > 0) return "incomplete";
+	if (missingWords(report.content, report.correction).length > 0) return "incomplete";
 	await trx
 		.updateTable("publish.report")
 		.set({ state: "submitted", submitted_at: sql`now()`, note: null, updated_at: sql`now()` })
 		.where("report_id", "=", reportId)
 		.where("state", "=", "draft")
 		.execute();
-	await log(trx, viewer, "report.submitted", report);
+	await logReport(trx, viewer, "report.submitted", report);
 	return "submitted";
-}
-
-/** Sends a submitted report back to its author with what is to be changed. */
-export async function sendReportBack(
-	trx: Trx,
-	viewer: Coordinator,
-	reportId: string,
-	note: string,
-): Promise<"sent_back" | "not_found" | "not_waiting"> {
-	const report = await findReport(trx, viewer, reportId);
-	if (!report) return "not_found";
-	if (report.state !== "submitted") return "not_waiting";
-	await trx
-		.updateTable("publish.report")
-		.set({ state: "draft", submitted_at: null, note, edit: sql`edit + 1`, updated_at: sql`now()` })
-		.where("report_id", "=", reportId)
-		.where("state", "=", "submitted")
-		.execute();
-	await log(trx, viewer, "report.sent_back", report);
-	return "sent_back";
-}
-
-/** Publishes a submitted report at once. Whoever wrote or edited it cannot; the database refuses that too. */
-export async function publishReport(
-	trx: Trx,
-	viewer: Coordinator,
-	reportId: string,
-	publishedAt: Date = new Date(),
-): Promise<"published" | "not_found" | "not_waiting" | "own_report"> {
-	const report = await findReport(trx, viewer, reportId);
-	if (!report) return "not_found";
-	if (report.state === "published") return "published";
-	if (report.state !== "submitted") return "not_waiting";
-	if (isOwn(report, viewer)) return "own_report";
-	await trx
-		.updateTable("publish.report")
-		.set({ state: "published", published_by: viewer.personId, published_at: publishedAt, updated_at: publishedAt })
-		.where("report_id", "=", reportId)
-		.where("state", "=", "submitted")
-		.execute();
-	await log(trx, viewer, "report.published", report);
-	return "published";
 }
 
 /** Whether somebody wrote or edited the report, and so cannot be the second person. */
@@ -144,13 +122,19 @@ export function isOwn(report: Pick<DeskReport, "createdBy" | "editedBy">, viewer
 	return report.createdBy === viewer.personId || report.editedBy.includes(viewer.personId);
 }
 
-async function log(trx: Trx, viewer: { personId: string }, action: LogAction, report: DeskReport): Promise<void> {
+export async function logReport(
+	trx: Trx,
+	viewer: { personId: string },
+	action: LogAction,
+	report: DeskReport,
+	detail = {},
+): Promise<void> {
 	await logEvent(trx, {
 		personId: viewer.personId,
 		action,
 		subjectKind: "report",
 		subjectId: report.reportId,
-		detail: { slug: report.slug, release: report.releaseNumber },
+		detail: { ...detail, slug: report.slug, release: report.releaseNumber },
 	});
 }
 
@@ -158,6 +142,8 @@ function selectReports(trx: Trx) {
 	return trx
 		.selectFrom("publish.report as report")
 		.innerJoin("release.release as release", "release.release_id", "report.release_id")
+		.leftJoin("release.release as next", "next.revises", "report.release_id")
+		.leftJoin("publish.report as later", "later.corrects", "report.report_id")
 		.select([
 			"report.report_id",
 			"report.slug",
@@ -173,7 +159,12 @@ function selectReports(trx: Trx) {
 			"report.updated_at",
 			"report.submitted_at",
 			"report.published_at",
+			"report.publish_at",
 			"report.content",
+			"report.version",
+			"report.correction",
+			"next.number as replaced_by",
+			"later.report_id as later_id",
 		]);
 }
 
@@ -195,6 +186,11 @@ function toReport(row: ReportRow): DeskReport {
 		updatedAt: row.updated_at.toISOString(),
 		submittedAt: row.submitted_at?.toISOString() ?? null,
 		publishedAt: row.published_at?.toISOString() ?? null,
+		publishAt: row.publish_at?.toISOString() ?? null,
 		content: ReportContent.parse(row.content),
+		version: row.version,
+		correction: row.version === 1 ? null : DraftWords.parse(row.correction ?? {}),
+		replacedBy: row.replaced_by,
+		hasLater: row.later_id !== null,
 	};
 }

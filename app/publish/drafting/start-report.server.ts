@@ -8,6 +8,7 @@ import { findReleaseById, listMeasures } from "../releases.server.ts";
 import { slugOf } from "../report.ts";
 import type { ReleaseMeasure } from "../release.ts";
 import { findEarlier } from "../report-source.server.ts";
+import { keepEdit } from "./report-edits.server.ts";
 import { draftReport, type Say } from "./draft-report.ts";
 
 export type Author = { personId: string; displayName: string };
@@ -59,6 +60,7 @@ export async function startReport(
 		})
 		.returning("report_id")
 		.executeTakeFirstOrThrow();
+	await keepEdit(trx, author, report_id, 1, content);
 	await logEvent(trx, {
 		personId: author.personId,
 		action: "report.started",

@@ -17,7 +17,19 @@ export default function Reports({ loaderData: { reports } }: Route.ComponentProp
 	const format = useFormat();
 	const toldText = useToldText();
 	return (
-		<Page title={t("reports.title")} lead={t("reports.lead")} width="narrow">
+		<Page
+			title={t("reports.title")}
+			lead={t("reports.lead")}
+			width="narrow"
+			actions={
+				<>
+					<ButtonLink to={href("/subscribe")}>{t("report:page.subscribe")}</ButtonLink>
+					<ButtonLink to={href("/reports.atom")} kind="secondary" reloadDocument>
+						{t("report:page.feed")}
+					</ButtonLink>
+				</>
+			}
+		>
 			{reports.length === 0 && (
 				<EmptyState
 					title={t("reports.none")}

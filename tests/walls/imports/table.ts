@@ -49,6 +49,8 @@ export const table: Row[] = [
 		values: ["app/publish/", "app/lib/", languages, eventLog],
 		types: ["app/auth/", "app/release/"],
 	},
+	// Who gets a report by mail, which the reader's role knows nothing of.
+	{ folder: "app/publish/readership/", values: ["app/lib/", languages], types: ["app/auth/"] },
 
 	{
 		folder: "app/jobs/",
@@ -178,7 +180,7 @@ export const exceptions: { from: string; to: string; because: string }[] = [
 
 /** Files of the reader's side, which reach the database through `app/publish/reader.server.ts` and in no other way. */
 export const readersSide = ["app/routes/public/", "app/routes/dataroom/", "app/routes/api/v1/", "app/publish/"];
-export const notReadersSide = ["app/publish/drafting/"];
+export const notReadersSide = ["app/publish/drafting/", "app/publish/readership/"];
 /** What the reader's side may reach, through however many files. Modules of app/auth ask who is there; the walk ends at them. */
 export const readersReach = [...readersSide, ...general];
 export const whoIsAsking = "app/auth/";

@@ -118,6 +118,7 @@ export function PlacePicker({ offered }: { offered: Offered }) {
 export function useFieldLabels(content: ReportContent): Record<string, string> {
 	const { t } = useTranslation("public");
 	const texts: [string, string][] = [
+		["correction", t("report:correction.label")],
 		["title", t("report_editor.title")],
 		["summary", t("report_editor.summary")],
 		["blocks", t("report_editor.blocks")],

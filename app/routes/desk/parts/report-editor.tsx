@@ -1,4 +1,4 @@
-import { useEffect } from "react";
+import { useEffect, useRef } from "react";
 import { useTranslation } from "react-i18next";
 import { Form, useLocation, useNavigation } from "react-router";
 import { Button, ButtonLink } from "#app/components/button.tsx";
@@ -9,17 +9,24 @@ import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import type { DeskReport } from "#app/publish/drafting/reports.server.ts";
-import { blockTypes, type CautionKey, type ReportContent } from "#app/publish/report.ts";
+import { blockTypes, type CautionKey, type DraftWords, type ReportContent } from "#app/publish/report.ts";
+import { Autosave } from "./report-autosave.tsx";
 import { EditorBlock } from "./report-editor-block.tsx";
 import { type Offered, PlacePicker, TextPair, useFieldLabels } from "./report-editor-fields.tsx";
 
 type ReportEditorProps = {
-	report: Pick<DeskReport, "content" | "edit">;
+	report: Pick<DeskReport, "content" | "edit" | "correction">;
 	offered: Offered;
 	/** Cautions that the page will add to what stands here. */
 	cautionsAdded: CautionKey[];
 	/** What an action sent back instead of saving. */
-	answer?: { content: ReportContent; edit: number; problems: Problem[]; conflict: number | null };
+	answer?: {
+		content: ReportContent;
+		correction: DraftWords | null;
+		edit: number;
+		problems: Problem[];
+		conflict: number | null;
+	};
 };
 
 /** One form for the whole report: every button saves all that is written, then does its own act. */
@@ -29,17 +36,31 @@ export function ReportEditor({ report, offered, cautionsAdded, answer }: ReportE
 	const labels = useFieldLabels(content);
 	const format = useFormat();
 	const busy = useNavigation().state === "submitting";
+	const form = useRef<HTMLFormElement>(null);
+	const correction = answer?.correction ?? report.correction;
 	useFocusOnHash();
 	return (
 		<>
 			<ErrorSummary problems={answer?.problems.length ? answer.problems : undefined} labels={labels} />
-			<Form method="post" key={answer ? "answer" : report.edit} className="max-w-6xl">
+			<Form method="post" ref={form} key={answer ? "answer" : report.edit} className="max-w-6xl">
 				<input type="hidden" name="edit" value={answer?.edit ?? report.edit} />
 				{/* Enter in a text box presses the first button of a form: it saves, and moves nothing. */}
 				<button type="submit" name="intent" value="save" tabIndex={-1} aria-hidden="true" className="sr-only">
 					{t("report_editor.save")}
 				</button>
 				{answer?.conflict && <Conflict edit={answer.conflict} />}
+				{correction && (
+					<Section title={t("report:correction.title")}>
+						<TextPair
+							name="correction"
+							label={labels.correction ?? ""}
+							help={t("report:correction.help")}
+							value={correction}
+							problems={answer?.problems}
+							rows={3}
+						/>
+					</Section>
+				)}
 				<Section title={t("report_editor.titleSummary")}>
 					<TextPair name="title" label={labels.title ?? ""} value={content.title} problems={answer?.problems} />
 					<TextPair
@@ -92,6 +113,7 @@ export function ReportEditor({ report, offered, cautionsAdded, answer }: ReportE
 					<Button kind="secondary" name="intent" value="submit">
 						{t("report_editor.submit")}
 					</Button>
+					<Autosave form={form} />
 				</div>
 			</Form>
 		</>

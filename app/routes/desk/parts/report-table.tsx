@@ -6,15 +6,16 @@ import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { DeskReport } from "#app/publish/drafting/reports.server.ts";
 
-export type ReportRow = Pick<DeskReport, "reportId" | "releaseNumber" | "state" | "authorName" | "updatedAt"> & {
-	title: { en: string; es: string };
-};
+type RowFacts =
+	"reportId" | "releaseNumber" | "state" | "authorName" | "updatedAt" | "version" | "replacedBy" | "hasLater";
+export type ReportRow = Pick<DeskReport, RowFacts> & { title: { en: string; es: string } };
 
-export function toRow({ reportId, releaseNumber, state, authorName, updatedAt, content }: DeskReport): ReportRow {
-	return { reportId, releaseNumber, state, authorName, updatedAt, title: content.title };
+export function toRow(report: DeskReport): ReportRow {
+	const { reportId, releaseNumber, state, authorName, updatedAt, version, replacedBy, hasLater, content } = report;
+	return { reportId, releaseNumber, state, authorName, updatedAt, version, replacedBy, hasLater, title: content.title };
 }
 
-export const reportTones = { draft: "neutral", submitted: "attention", published: "good" } as const;
+export const reportTones = { draft: "neutral", submitted: "attention", scheduled: "good", published: "good" } as const;
 
 type ReportTableProps = { rows: ReportRow[]; linkTo: (reportId: string) => string; empty: string };
 
@@ -48,7 +49,23 @@ function useColumns(linkTo: ReportTableProps["linkTo"]): Column<ReportRow>[] {
 		{
 			key: "state",
 			header: t("report_editor.state"),
-			cell: ({ state }) => <StatusBadge tone={reportTones[state]}>{t(`report_editor.states.${state}`)}</StatusBadge>,
+			cell: ({ state, replacedBy, hasLater }) => (
+				<>
+					<StatusBadge tone={reportTones[state]}>{t(`report_editor.states.${state}`)}</StatusBadge>
+					{replacedBy !== null && !hasLater && (
+						<>
+							{" "}
+							<StatusBadge tone="attention">{t("report:look.badge")}</StatusBadge>
+						</>
+					)}
+				</>
+			),
+		},
+		{
+			key: "version",
+			header: t("report:versions.column"),
+			numeric: true,
+			cell: ({ version }) => format.number(version),
 		},
 		{
 			key: "release",

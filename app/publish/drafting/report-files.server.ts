@@ -1,0 +1,35 @@
+import { sql } from "kysely";
+import type { Trx } from "#app/auth/scope.server.ts";
+
+export type FileProblem = "no_browser" | "failed";
+export type ReportFile = { language: string; madeAt: string; problem: FileProblem | null };
+
+/** Keeps a report's PDF in one language, or why there is none; a later one takes its place. */
+export async function keepReportFile(
+	trx: Trx,
+	reportId: string,
+	language: string,
+	made: { bytes: Buffer } | { problem: FileProblem },
+): Promise<void> {
+	const file = { bytes: "bytes" in made ? made.bytes : null, problem: "problem" in made ? made.problem : null };
+	await trx
+		.insertInto("publish.report_file")
+		.values({ report_id: reportId, language, ...file })
+		.onConflict((conflict) => conflict.columns(["report_id", "language"]).doUpdateSet({ ...file, made_at: sql`now()` }))
+		.execute();
+}
+
+/** What became of a report's PDFs, for the desk; the bytes stay where they are. */
+export async function listFileStates(trx: Trx, reportId: string): Promise<ReportFile[]> {
+	const rows = await trx
+		.selectFrom("publish.report_file")
+		.select(["language", "made_at", "problem"])
+		.where("report_id", "=", reportId)
+		.orderBy("language")
+		.execute();
+	return rows.map((row) => ({
+		language: row.language,
+		madeAt: row.made_at.toISOString(),
+		problem: row.problem as FileProblem | null,
+	}));
+}

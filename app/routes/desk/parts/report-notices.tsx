@@ -1,0 +1,58 @@
+import { useTranslation } from "react-i18next";
+import { Form, href, Link } from "react-router";
+import { Confirm } from "#app/components/confirm.tsx";
+import { Notice } from "#app/components/notice.tsx";
+import { useFormat } from "#app/i18n/use-format.ts";
+import type { ReportFile } from "#app/publish/drafting/report-files.server.ts";
+import type { DeskReport } from "#app/publish/drafting/reports.server.ts";
+
+type ReportNoticesProps = { report: DeskReport; needsLook: boolean; files: ReportFile[] };
+
+/** Where a report stands, what is wanted of its author, and what became of its PDFs. */
+export function ReportNotices({ report, needsLook, files }: ReportNoticesProps) {
+	const { t } = useTranslation("public");
+	const format = useFormat();
+	const { state, note, publishAt } = report;
+	const unprinted = files.filter(({ problem }) => problem);
+	return (
+		<>
+			{needsLook && (
+				<Notice tone="attention" title={t("report:look.title")}>
+					{t("report:look.body", { number: report.replacedBy })}
+				</Notice>
+			)}
+			{note && (
+				<Notice tone="attention" title={t("report_editor.sentBack")}>
+					{note}
+				</Notice>
+			)}
+			{state === "submitted" && <Notice tone="info">{t("report_editor.waiting")}</Notice>}
+			{state === "scheduled" && publishAt && (
+				<Notice tone="info">{t("report:schedule.waits", { moment: format.moment(publishAt) })}</Notice>
+			)}
+			{unprinted.length > 0 && (
+				<Notice tone="attention" title={t("report:pdf.missing")}>
+					{t(unprinted[0]?.problem === "no_browser" ? "report:pdf.noBrowser" : "report:pdf.failed")}
+				</Notice>
+			)}
+			{state === "published" && (
+				<>
+					<Notice tone="info">
+						{t("report_editor.isPublished")}{" "}
+						<Link to={href("/reports/:slug", { slug: report.slug })}>{t("report_editor.seePublished")}</Link>
+					</Notice>
+					<Form method="post" className="mb-6">
+						<Confirm
+							trigger={t("report:correction.start")}
+							title={t("report:correction.startTitle")}
+							body={t("report:correction.startBody")}
+							confirmLabel={t("report:correction.start")}
+							name="intent"
+							value="correct"
+						/>
+					</Form>
+				</>
+			)}
+		</>
+	);
+}
