@@ -23,7 +23,7 @@ export const logActions = {
 		...(["publication_allowed", "publication_disallowed"] as const),
 	],
 	import: ["finished", "undone"],
-	response: ["started", "submitted", "amended", "withdrawn"],
+	response: ["started", "submitted", "amended", "withdrawn", "taken_in", "left_out"],
 	release: ["drafted", "cancelled", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
 	settings: ["changed"],
 	key: ["made", "revoked"],

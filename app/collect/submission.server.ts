@@ -79,7 +79,7 @@ export async function sendIn(trx: Trx, viewer: Grower, answering: Locked, by: Se
 }
 
 /** From here on the answers stand in the response rates and in the figures. */
-async function countIn(trx: Trx, { surveyId, operationId }: AnswerPlace, responseId: string): Promise<void> {
+export async function countIn(trx: Trx, { surveyId, operationId }: AnswerPlace, responseId: string): Promise<void> {
 	await trx
 		.updateTable("collect.frame_operation")
 		.set({ disposition: "complete", disposition_at: sql`now()` })

@@ -5,6 +5,7 @@ import { requireAssociate } from "#app/auth/guard.server.ts";
 import { countDueCalls } from "#app/collect/calls.server.ts";
 import { CountQuery } from "#app/collect/desk-lists.schema.ts";
 import { countMailings } from "#app/collect/invitations.server.ts";
+import { countLateWaiting } from "#app/collect/late-answers.server.ts";
 import { listCountyCounts } from "#app/collect/response-counts.server.ts";
 import { listSurveys } from "#app/collect/surveys.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
@@ -38,6 +39,9 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 		return {
 			open,
 			drafts: surveys.filter((survey) => survey.state === "draft"),
+			late: (await countLateWaiting(trx, viewer)).flatMap(({ surveyId, waiting }) =>
+				surveys.filter((survey) => survey.surveyId === surveyId).map((survey) => ({ ...survey, waiting })),
+			),
 			releases: await listReleaseWork(trx, viewer),
 			query,
 			counts: counted && {

@@ -13,7 +13,13 @@ type OpenSurvey = Named & {
 	mailings: { toInvite: number; withoutAddress: number };
 	dueCalls: number;
 };
-type TodayListProps = { open: OpenSurvey[]; drafts: Named[]; releases: (Named & { work: string })[] };
+type TodayListProps = {
+	open: OpenSurvey[];
+	drafts: Named[];
+	/** Surveys with answers that came after the closing, and how many of them wait. */
+	late: (Named & { waiting: number })[];
+	releases: (Named & { work: string })[];
+};
 type Task = { key: string; to: string; text: string };
 
 /** What needs the associate today, each as one sentence that leads to where it is done. */
@@ -41,7 +47,7 @@ export function TodayList(props: TodayListProps) {
 
 const page = ({ surveyId }: Named) => href("/desk/surveys/:surveyId", { surveyId });
 
-function useTasks({ open, drafts, releases }: TodayListProps): Task[] {
+function useTasks({ open, drafts, late, releases }: TodayListProps): Task[] {
 	const { t, i18n } = useTranslation("desk");
 	const format = useFormat();
 	const nameOf = ({ title, season }: Named) => t("surveys.name", { title: wordsIn(title, i18n.language), season });
@@ -82,10 +88,19 @@ function useTasks({ open, drafts, releases }: TodayListProps): Task[] {
 		to: page(survey),
 		text: t("overview.task.open", { survey: nameOf(survey) }),
 	}));
+	const ofLate = late.map((survey) => ({
+		key: `late ${survey.surveyId}`,
+		to: `${href("/desk/surveys/:surveyId/answered", { surveyId: survey.surveyId })}#late`,
+		text: t("answered:late.task", {
+			survey: nameOf(survey),
+			count: survey.waiting,
+			value: format.number(survey.waiting),
+		}),
+	}));
 	const ofReleases = releases.map((survey) => ({
 		key: `release ${survey.surveyId}`,
 		to: href("/desk/surveys/:surveyId/release", { surveyId: survey.surveyId }),
 		text: t(`overview.task.release.${survey.work}`, { survey: nameOf(survey) }),
 	}));
-	return [...ofOpen.filter((task) => task !== false), ...ofDrafts, ...ofReleases];
+	return [...ofOpen.filter((task) => task !== false), ...ofDrafts, ...ofLate, ...ofReleases];
 }
