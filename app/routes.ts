@@ -16,6 +16,7 @@ export default [
 		route("methods", "routes/public/methods.tsx"),
 		route("data", "routes/public/data.tsx"),
 		route("data/:release", "routes/public/data-release.tsx"),
+		route("api", "routes/public/api.tsx"),
 
 		route("sign-in", "routes/public/sign-in.tsx"),
 		route("sign-out", "routes/public/sign-out.tsx"),
@@ -24,6 +25,7 @@ export default [
 		...prefix("dataroom", [
 			layout("routes/dataroom/layout.tsx", [
 				index("routes/dataroom/home.tsx"),
+				route("keys", "routes/dataroom/keys.tsx"),
 				route("access", "routes/dataroom/access.tsx"),
 			]),
 		]),

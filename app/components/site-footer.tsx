@@ -14,6 +14,9 @@ export function SiteFooter() {
 						<FooterLink to="/methods">{t("footer.methods")}</FooterLink>
 					</li>
 					<li>
+						<FooterLink to="/api">{t("footer.api")}</FooterLink>
+					</li>
+					<li>
 						<FooterLink to="/methods#privacy">{t("footer.privacy")}</FooterLink>
 					</li>
 					<li>

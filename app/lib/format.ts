@@ -76,6 +76,15 @@ export function formatterFor(language: string, t: TFunction) {
 		/** The calendar day of a moment in the named zone. */
 		dayOf: (value: Date | string, timeZone = "America/Chicago") =>
 			date(value, { day: "numeric", month: "long", year: "numeric", timeZone }),
+		/** A file's size in the unit that reads best; kilo is a thousand, as the byte count itself may stand beside it. */
+		fileSize: (bytes: number) => {
+			const [unit, size] =
+				bytes < 1e3 ? ["byte", bytes] : bytes < 1e6 ? ["kilobyte", bytes / 1e3] : ["megabyte", bytes / 1e6];
+			const maximumFractionDigits = Number(size) < 10 && unit !== "byte" ? 1 : 0;
+			return new Intl.NumberFormat(locale, { style: "unit", unit: String(unit), maximumFractionDigits }).format(
+				Number(size),
+			);
+		},
 		list: (items: string[]) => new Intl.ListFormat(locale, { type: "conjunction" }).format(items),
 		compare: new Intl.Collator(locale, { numeric: true }).compare,
 	};
