@@ -128,6 +128,7 @@ export default [
 			]),
 			route("surveys/:surveyId/estimates/:areaKey/:cropKey/:measureKey/figure.csv", "routes/desk/estimate-csv.ts"),
 			route("surveys/:surveyId/mailing/:kind/html", "routes/desk/mail-html.ts"),
+			route("districts", "routes/desk/districts.tsx"),
 			route("reports", "routes/desk/reports.tsx"),
 			route("reports/:reportId", "routes/desk/report.tsx"),
 			route("reports/:reportId/versions", "routes/desk/report-versions.tsx"),

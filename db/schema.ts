@@ -439,6 +439,14 @@ export interface DirectoryDistrict {
   state_fips: string;
 }
 
+export interface DirectoryDistrictChange {
+  before: Json;
+  changed_at: Generated<Timestamp>;
+  changed_by: string;
+  district_change_id: Generated<number>;
+  state_fips: string;
+}
+
 export interface DirectoryImport {
   choices: Json | null;
   counts: Json | null;
@@ -778,6 +786,7 @@ export interface DB {
   "directory.crop": DirectoryCrop;
   "directory.distinct_pair": DirectoryDistinctPair;
   "directory.district": DirectoryDistrict;
+  "directory.district_change": DirectoryDistrictChange;
   "directory.import": DirectoryImport;
   "directory.import_row": DirectoryImportRow;
   "directory.merge": DirectoryMerge;

@@ -28,6 +28,7 @@ export const logActions = {
 	settings: ["changed"],
 	key: ["made", "revoked"],
 	report: ["started", "submitted", "sent_back", "scheduled", "unscheduled", "published", "corrected"],
+	district: ["redrawn", "put_back"],
 } as const;
 
 type Actions = typeof logActions;

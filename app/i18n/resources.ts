@@ -2,6 +2,7 @@ import enAnswered from "#locales/en/answered.json" with { type: "json" };
 import enCommon from "#locales/en/common.json" with { type: "json" };
 import enDataroom from "#locales/en/dataroom.json" with { type: "json" };
 import enDesk from "#locales/en/desk.json" with { type: "json" };
+import enDistricts from "#locales/en/districts.json" with { type: "json" };
 import enGrower from "#locales/en/grower.json" with { type: "json" };
 import enGrowers from "#locales/en/growers.json" with { type: "json" };
 import enMail from "#locales/en/mail.json" with { type: "json" };
@@ -14,6 +15,7 @@ import esAnswered from "#locales/es/answered.json" with { type: "json" };
 import esCommon from "#locales/es/common.json" with { type: "json" };
 import esDataroom from "#locales/es/dataroom.json" with { type: "json" };
 import esDesk from "#locales/es/desk.json" with { type: "json" };
+import esDistricts from "#locales/es/districts.json" with { type: "json" };
 import esGrower from "#locales/es/grower.json" with { type: "json" };
 import esGrowers from "#locales/es/growers.json" with { type: "json" };
 import esMail from "#locales/es/mail.json" with { type: "json" };
@@ -30,6 +32,7 @@ export const resources = {
 		common: enCommon,
 		dataroom: enDataroom,
 		desk: enDesk,
+		districts: enDistricts,
 		grower: enGrower,
 		growers: enGrowers,
 		mail: enMail,
@@ -44,6 +47,7 @@ export const resources = {
 		common: esCommon,
 		dataroom: esDataroom,
 		desk: esDesk,
+		districts: esDistricts,
 		grower: esGrower,
 		growers: esGrowers,
 		mail: esMail,

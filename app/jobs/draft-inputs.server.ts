@@ -61,9 +61,7 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 	const states = await countResponses(trx, surveyId);
 	const tallies = await listTallies(trx, surveyId);
 	const surveyStates = new Set(states.map((state) => state.stateFips));
-	const areas = (await listAreas(trx))
-		.filter((area) => area.stateFips === null || surveyStates.has(area.stateFips))
-		.map(({ key, kind, parentKey, stateFips, name }) => ({ areaKey: key, kind, parentKey, stateFips, name }));
+	const areas = (await listReleasedAreas(trx, surveyId)) ?? (await listAreasOf(trx, surveyStates));
 	const total = (key: "asked" | "answered") => states.reduce((sum, state) => sum + state[key], 0);
 	return {
 		rules,
@@ -92,10 +90,61 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 			sensitiveKeys: sensitive.all,
 			countedKeys: sensitive.counted,
 			largestOwners: rules.largest?.owners,
+			districtOf: districtsOf(areas),
 		}),
 		holdings: await listHoldings(trx, surveyId, { baseKeys, countedKeys: sensitive.counted }),
 		earlier: await listEarlierEditions(trx, surveyId),
 	};
+}
+
+type Areas = ReleaseMethod["areas"];
+
+async function listAreasOf(trx: Trx, stateFips: ReadonlySet<string>): Promise<Areas> {
+	return (await listAreas(trx))
+		.filter((area) => area.stateFips === null || stateFips.has(area.stateFips))
+		.map(({ key, kind, parentKey, stateFips: state, name }) => ({
+			areaKey: key,
+			kind,
+			parentKey,
+			stateFips: state,
+			name,
+		}));
+}
+
+/**
+ * A revision tells of the same areas as the release before it, though districts were redrawn since: two ways of grouping the
+ * same counties would let one be worked out from the other.
+ */
+async function listReleasedAreas(trx: Trx, surveyId: string): Promise<Areas | undefined> {
+	const rows = await trx
+		.selectFrom("release.area as a")
+		.select(["a.area_key", "a.kind", "a.parent_key", "a.state_fips", "a.name"])
+		.where("a.release_id", "=", (eb) =>
+			eb
+				.selectFrom("release.release")
+				.select("release_id")
+				.where("series_id", "=", surveyId)
+				.orderBy("edition", "desc")
+				.limit(1),
+		)
+		.orderBy("a.area_key")
+		.execute();
+	if (rows.length === 0) return undefined;
+	return rows.map((row) => ({
+		areaKey: row.area_key,
+		kind: row.kind as Areas[number]["kind"],
+		parentKey: row.parent_key,
+		stateFips: row.state_fips,
+		name: row.name,
+	}));
+}
+
+function districtsOf(areas: Areas): Map<string, string | null> {
+	const districts = new Set(areas.filter(({ kind }) => kind === "district").map(({ areaKey }) => areaKey));
+	const counties = areas.filter(({ kind }) => kind === "county");
+	return new Map(
+		counties.map(({ areaKey, parentKey }) => [areaKey, parentKey && districts.has(parentKey) ? parentKey : null]),
+	);
 }
 
 /** Who was asked and who answered. Answers begun and never sent in are in no figure, so they count as none. */

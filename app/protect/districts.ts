@@ -10,8 +10,10 @@ export interface GroupingCounts {
 	/** Cells of a district and a crop, and of all crops, that have answers and may be shown, or may not. */
 	shown: number;
 	withheld: number;
-	/** Counties with answers of which at least one crop is told, in their district's figure. */
-	countiesTold: number;
+	/** Counties with answers of which at least one crop is told, in their district's figure; ascending. */
+	told: string[];
+	/** Counties with answers of which none is; ascending. */
+	untold: string[];
 }
 
 export interface DistrictProposal {
@@ -21,7 +23,7 @@ export interface DistrictProposal {
 	after: GroupingCounts;
 }
 
-interface DistrictInput {
+export interface DistrictInput {
 	/** The state's counties, and the group that each is in now: a district, or the county by itself. */
 	counties: readonly { areaKey: string; group: string }[];
 	/** Which counties share a border; those of other states are left aside. */
@@ -54,12 +56,21 @@ export function proposeDistricts(input: DistrictInput): DistrictProposal {
 		const joined = [...best[0], ...best[1]].toSorted();
 		groups = [...groups.filter((group) => !best.includes(group)), joined].toSorted(byFirst);
 	}
-	const now = [...groupBy(counties, ({ group }) => group).values()].map((list) => list.map(({ areaKey }) => areaKey));
-	return { districts: groups, before: countGroups(now, worth), after: countGroups(groups, worth) };
+	return { districts: groups, before: countGrouping(input), after: countGroups(groups, worth) };
+}
+
+/** How much is shown when counties are grouped as `input.counties` says. */
+export function countGrouping(input: DistrictInput): GroupingCounts {
+	const groups = [...groupBy(input.counties, ({ group }) => group).values()];
+	return countGroups(
+		groups.map((list) => list.map(({ areaKey }) => areaKey)),
+		valuer(input),
+	);
 }
 
 /** What may be shown of a group of counties. */
-type Worth = (group: readonly string[]) => { shown: number; withheld: number; told: number; value: number };
+type Worth = (group: readonly string[]) => Valued;
+type Valued = { shown: number; withheld: number; told: string[]; untold: string[]; value: number };
 
 function bestJoin(groups: readonly string[][], input: DistrictInput, worth: Worth, mostCounties: number) {
 	const groupOf = new Map(groups.flatMap((group) => group.map((county) => [county, group] as const)));
@@ -78,8 +89,8 @@ function bestJoin(groups: readonly string[][], input: DistrictInput, worth: Wort
 
 function valuer({ holdings, quantities, rules }: DistrictInput): Worth {
 	const here = groupBy(holdings, ({ areaKey }) => areaKey);
-	const known = new Map<string, ReturnType<Worth>>();
-	const value = (group: readonly string[]): ReturnType<Worth> => {
+	const known = new Map<string, Valued>();
+	const value = (group: readonly string[]): Valued => {
 		const answers = group.flatMap((county) => here.get(county) ?? []);
 		const crops = groupBy(answers, ({ cropKey }) => cropKey);
 		const cells = [...crops.values(), ...(answers.length > 0 ? [answers] : [])];
@@ -92,7 +103,9 @@ function valuer({ holdings, quantities, rules }: DistrictInput): Worth {
 			shown += fits ? 1 : 0;
 			worthOfAll += places.size * (fits ? 1 : NEAR * Math.min(1, owners / rules.minimumOwners));
 		}
-		return { shown, withheld: cells.length - shown, told: told.size, value: worthOfAll };
+		const places = [...new Set(answers.map(({ areaKey }) => areaKey))];
+		const untold = places.filter((place) => !told.has(place));
+		return { shown, withheld: cells.length - shown, told: [...told], untold, value: worthOfAll };
 	};
 	return (group) => {
 		const key = group.toSorted().join(" ");
@@ -115,12 +128,13 @@ function judge(answers: readonly Holding[], quantities: readonly string[], rules
 
 function countGroups(groups: readonly (readonly string[])[], worth: Worth): GroupingCounts {
 	const each = groups.map(worth);
-	const sum = (of: (one: ReturnType<Worth>) => number) => each.reduce((whole, one) => whole + of(one), 0);
+	const sum = (of: (one: Valued) => number) => each.reduce((whole, one) => whole + of(one), 0);
 	return {
 		districts: groups.length,
 		shown: sum(({ shown }) => shown),
 		withheld: sum(({ withheld }) => withheld),
-		countiesTold: sum(({ told }) => told),
+		told: each.flatMap(({ told }) => told).toSorted(),
+		untold: each.flatMap(({ untold }) => untold).toSorted(),
 	};
 }
 

@@ -25,6 +25,8 @@ export interface ShareQuery {
 	countedKeys?: readonly string[];
 	/** n of the (n, k) rule, where it is used. */
 	largestOwners?: number | null;
+	/** The district of each county, null where it is in none; without it, as the districts are drawn today. */
+	districtOf?: ReadonlyMap<string, string | null>;
 }
 
 /**
@@ -35,7 +37,7 @@ export interface ShareQuery {
  * @returns cells with at least one owner, ordered by area and crop.
  */
 export async function listOwnerShares(trx: Transaction<DB>, query: ShareQuery): Promise<OwnerShares[]> {
-	const { surveyId, baseKeys, sensitiveKeys = [], countedKeys = [], largestOwners = null } = query;
+	const { surveyId, baseKeys, sensitiveKeys = [], countedKeys = [], largestOwners = null, districtOf } = query;
 	const amounts = [RESPONDENTS, ...baseKeys];
 	const ofOwner = [
 		sql`count(distinct f.operation_id)::float8 as ${sql.ref(RESPONDENTS)}`,
@@ -47,14 +49,14 @@ export async function listOwnerShares(trx: Transaction<DB>, query: ShareQuery): 
 			select crop_key, operation_id, owner_id, county_fips, measure_key, y, x
 			from collect.fact
 			where survey_id = ${surveyId} and not set_aside and y is not null and crop_key <> ${ALL_CROPS}
-		), owned as (
+		), place as (${placeOf(districtOf)}), owned as (
 			select ${cropKey} as crop_key, ${areaKey} as area_key, f.owner_id, ${sql.join(ofOwner)}
-			from fact f join directory.county c using (county_fips)
+			from fact f join place c using (county_fips)
 			group by f.owner_id, ${everyLevel}
 		), answered as (
 			select ${cropKey} as crop_key, ${areaKey} as area_key, f.measure_key, count(distinct f.owner_id) as owners,
 				f.measure_key = any (${sensitiveKeys}) and min(f.y / nullif(f.x, 0)) = max(f.y / nullif(f.x, 0)) as uniform
-			from fact f join directory.county c using (county_fips)
+			from fact f join place c using (county_fips)
 			group by f.measure_key, ${everyLevel}
 		), fewest as (
 			select crop_key, area_key, min(owners)::int as fewest_owners, bool_or(uniform) as uniform
@@ -71,6 +73,13 @@ export async function listOwnerShares(trx: Transaction<DB>, query: ShareQuery): 
 		group by o.area_key, o.crop_key
 		order by o.area_key, o.crop_key`.execute(trx);
 	return rows.map((row) => sharesOf(row, amounts, countedKeys));
+}
+
+function placeOf(districtOf: ShareQuery["districtOf"]): RawBuilder<unknown> {
+	if (!districtOf) return sql`select county_fips, district_key, state_fips from directory.county`;
+	const counties = [...districtOf].map(([county_fips, district_key]) => ({ county_fips, district_key }));
+	return sql`select county_fips, district_key, left(county_fips, 2) as state_fips
+		from jsonb_to_recordset(${JSON.stringify(counties)}::jsonb) as told(county_fips text, district_key text)`;
 }
 
 type Row = Record<string, number | string | boolean | null>;

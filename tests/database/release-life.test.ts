@@ -159,6 +159,21 @@ test("a revision needs a release and a reason, replaces it in the open, and the 
 	expect((await listDataRows(first)).some(({ value }) => value !== null)).toBe(true);
 });
 
+test("a revision tells of the areas of the release before it, though the districts were redrawn since", async () => {
+	const first = await draft();
+	await decide(first, { decision: "publish" });
+	await owner.query("insert into directory.district values ('IA-U', '19', 'Redrawn') on conflict do nothing");
+	await owner.query("update directory.county set district_key = 'IA-U' where county_fips in ('19001', '19005')");
+	const second = await draft(reason);
+	const { rows } = await owner.query(
+		"select area_key, status from collect.release_draft_cell where release_draft_id = $1 and area_key in ('IA-T', 'IA-U') and crop_key = 'apple'",
+		[second],
+	);
+	expect(rows).toEqual([{ area_key: "IA-T", status: "shown" }]);
+	expect(await statusOf(second)).toBe("audited");
+	expect(await decide(second, { decision: "publish" })).toMatchObject({ done: "published" });
+});
+
 test("a withdrawn release serves no figure and keeps its address; a revision can follow", async () => {
 	const first = await draft();
 	await decide(first, { decision: "publish" });

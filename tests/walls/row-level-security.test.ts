@@ -69,8 +69,6 @@ const guarded: Record<string, Guarded> = {
 /** Tables of the two schemas that hold no row of a grower. */
 const open: Record<string, string> = {
 	"directory.state": "reference: the states covered",
-	"directory.district": "reference: named groups of counties",
-	"directory.county": "reference: every county",
 	"directory.county_neighbor": "reference: which counties touch",
 	"directory.crop": "reference: the crops",
 	"directory.network_rules": "the network's settings, which every release tells",
@@ -80,8 +78,11 @@ const open: Record<string, string> = {
 	"collect.survey_state": "which states a survey covers",
 };
 
-/** Tables of questions, which hold no row of a grower either: read by all, written at the desks of a form's states. */
+/** Tables of areas and questions, which hold no row of a grower either: read by all, written at the desks of their states. */
 const guardedWrites: Record<string, string> = {
+	"directory.district": "named groups of counties: tests/database/districts.test.ts",
+	"directory.county": "every county, with its district: the same",
+	"directory.district_change": "how a state's counties were grouped before: the same, read at its desks alone",
 	"collect.form": "which forms there are: tests/database/forms-editor.test.ts",
 	"collect.form_version": "questions, not answers: the same",
 	"collect.form_draft": "questions being written, which growers do not see: the same",

@@ -58,6 +58,7 @@ function DeskFrame({ children }: { children: ReactNode }) {
 					{ to: "/desk/growers", label: t("nav.growers") },
 					{ to: "/desk/surveys", label: t("nav.surveys") },
 					{ to: "/desk/reports", label: t("nav.reports") },
+					{ to: "/desk/districts", label: t("nav.districts") },
 				]}
 			/>
 		</>
