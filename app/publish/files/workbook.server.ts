@@ -1,6 +1,6 @@
 import { PassThrough } from "node:stream";
 import { buffer } from "node:stream/consumers";
-import { stream } from "exceljs";
+import ExcelJS from "exceljs";
 import { columnType, type DataColumn, dataColumns } from "../data-file.ts";
 import { codebookRows } from "./codebook.ts";
 import type { FileSource } from "./release-file.ts";
@@ -12,7 +12,7 @@ import type { FileSource } from "./release-file.ts";
 export async function cellsWorkbook(source: FileSource): Promise<Uint8Array> {
 	const sink = new PassThrough();
 	const taken = buffer(sink);
-	const book = new stream.xlsx.WorkbookWriter({ stream: sink, useStyles: true });
+	const book = new ExcelJS.stream.xlsx.WorkbookWriter({ stream: sink, useStyles: true });
 	// The same release gives the same file, as far as the format lets it.
 	book.created = new Date(source.release.publishedAt);
 	book.modified = book.created;
@@ -23,7 +23,7 @@ export async function cellsWorkbook(source: FileSource): Promise<Uint8Array> {
 	return taken;
 }
 
-type Book = InstanceType<typeof stream.xlsx.WorkbookWriter>;
+type Book = InstanceType<typeof ExcelJS.stream.xlsx.WorkbookWriter>;
 
 function addCells(book: Book, { records }: FileSource): void {
 	const sheet = book.addWorksheet("cells", { views: [{ state: "frozen", ySplit: 1 }] });
