@@ -126,6 +126,7 @@ export default [
 					route("release", "routes/desk/release.tsx"),
 				]),
 			]),
+			route("surveys/:surveyId/paper/:operationId?", "routes/desk/paper.tsx"),
 			route("surveys/:surveyId/estimates/:areaKey/:cropKey/:measureKey/figure.csv", "routes/desk/estimate-csv.ts"),
 			route("surveys/:surveyId/mailing/:kind/html", "routes/desk/mail-html.ts"),
 			route("districts", "routes/desk/districts.tsx"),

@@ -4,11 +4,14 @@ import type { Associate } from "#app/auth/viewer.ts";
 import type { AnswerPlace } from "#app/collect/answer-place.server.ts";
 import { enterAnswers, findEntry, type NewEntry } from "#app/collect/entered-answers.server.ts";
 import { keepEntryDraft, listEntryDrafts } from "#app/collect/entry-drafts.server.ts";
+import { PaperQuery } from "#app/collect/paper-forms.schema.ts";
+import { listPaperForms } from "#app/collect/paper-forms.server.ts";
 import type { StepValues } from "#app/collect/posted.ts";
 import { readEntry } from "#app/collect/read-entry.ts";
 import { findResponse } from "#app/collect/response-view.server.ts";
 import { versionOf } from "#app/collect/step-change.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
+import { paperSheets } from "#app/routes/desk/parts/paper/paper-sheet.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
 import { answeringOf, askGrower, closeLongAgo, countJobs, pounds, submit, typeStep } from "./answering-fixture.ts";
 import { addPerson, asDesk, connectOwner, count, loadPlaces, useDatabase } from "./surveys-fixture.ts";
@@ -233,5 +236,68 @@ describe("an entry that was interrupted", () => {
 		expect(await asDesk(colleague, (trx) => listEntryDrafts(trx, colleague, place.surveyId))).toEqual([]);
 		// It counts as nothing, and begins nothing for the grower.
 		expect(await count(owner, "collect.response where survey_id = $1", [place.surveyId])).toBe(0);
+	});
+});
+
+const papersOf = (viewer: Associate, place: Partial<AnswerPlace> & { surveyId: string }, query = {}) =>
+	asDesk(viewer, async (trx) => {
+		const asked = PaperQuery.parse(query);
+		const papers = await listPaperForms(trx, viewer, place, asked);
+		return papers && { ...papers, sheets: await paperSheets(papers, asked) };
+	});
+
+describe("a paper form", () => {
+	test("has the operation's own plantings, the promise and a number by which it is found", async () => {
+		const { place, plantingIds } = await askGrower(owner, iowa, {
+			begin: false,
+			name: "Heron Slope Orchard",
+			trees: 77,
+			more: [{ crop: "plum", cultivar: "Mount Royal", trees: 12 }],
+		});
+		const papers = await papersOf(iowa, place);
+		const [sheet, ...others] = papers!.sheets;
+		expect(others).toEqual([]);
+		expect(sheet!.lines).toContain("Heron Slope Orchard");
+		expect(sheet!.number).toContain(place.operationId.slice(0, 8).toUpperCase());
+		expect(sheet!.pledge.lines).toHaveLength(5);
+		const plantings = sheet!.steps.filter(({ key }) => key.startsWith("planting-"));
+		expect(plantings.map(({ key }) => key)).toEqual(plantingIds.map((id) => `planting-${id}`));
+		expect(plantings[1]!.title).toContain("Mount Royal");
+		expect(plantings[0]!.questions.find(({ key }) => key === "bearing_trees")!.known).toContain("77");
+	});
+
+	test("is in the grower's language, in the one asked for, or in both", async () => {
+		const { place } = await askGrower(owner, iowa, { begin: false, language: "es" });
+		const languages = async (language: string) =>
+			(await papersOf(iowa, place, { language }))!.sheets.map((sheet) => sheet.language);
+		expect([await languages("own"), await languages("en"), await languages("both")]).toEqual([
+			["es"],
+			["en"],
+			["en", "es"],
+		]);
+		const [english, spanish] = (await papersOf(iowa, place, { language: "both" }))!.sheets;
+		expect(english!.steps.map(({ key }) => key)).toEqual(spanish!.steps.map(({ key }) => key));
+		expect(english!.pledge.title).not.toBe(spanish!.pledge.title);
+	});
+
+	test("is printed for all that have not answered, and only for the viewer's states", async () => {
+		const { place, step } = await askGrower(owner, iowa, { begin: false, email: null });
+		const asked = (await papersOf(iowa, { surveyId: place.surveyId }))!.total;
+		expect(asked).toBeGreaterThan(1);
+		await enter(iowa, place, typedFor(step, 40, 4000, 4000));
+		expect((await papersOf(iowa, { surveyId: place.surveyId }))!.total).toBe(asked - 1);
+		// Its own form can still be had.
+		expect((await papersOf(iowa, place))!.sheets).toHaveLength(1);
+		expect(await papersOf(wisconsin, place)).toBeUndefined();
+		expect(await papersOf(wisconsin, { surveyId: place.surveyId })).toBeUndefined();
+	});
+
+	test("has a place for each question that can be answered on paper, and no other", async () => {
+		const { place } = await askGrower(owner, iowa, { begin: false });
+		const { sheets, definition } = (await papersOf(iowa, place))!;
+		const asked = definition.screens.flatMap(({ questions }) =>
+			questions.filter(({ type }) => type !== "photo").map(({ key }) => key),
+		);
+		expect(sheets[0]!.steps.flatMap(({ questions }) => questions.map(({ key }) => key))).toEqual(asked);
 	});
 });

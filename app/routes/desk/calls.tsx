@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import { data, href, redirect } from "react-router";
+import { data, href, Link, redirect } from "react-router";
 import type { Route } from "./+types/calls";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
@@ -110,6 +110,11 @@ export default function Calls({ loaderData, actionData, params }: Route.Componen
 				caption={t(`calls.filter.${query.show}`)}
 				isFiltered={query.q !== "" || query.show !== "all"}
 			/>
+			<p className="no-print mt-3">
+				<Link to={href("/desk/surveys/:surveyId/paper/:operationId?", { surveyId: params.surveyId })}>
+					{t("paper.all")}
+				</Link>
+			</p>
 			<Paging page={calls.page} pageCount={calls.pageCount} total={calls.total} />
 		</>
 	);

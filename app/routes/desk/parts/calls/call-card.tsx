@@ -61,6 +61,12 @@ export function CallCard({ call, surveyId, isOpen, values, problems }: CallCardP
 							{t("calls.back")}
 						</Link>
 						<Link
+							to={href("/desk/surveys/:surveyId/paper/:operationId?", { surveyId, operationId })}
+							className="inline-flex min-h-11 items-center"
+						>
+							{t("paper.one")}
+						</Link>
+						<Link
 							to={href("/desk/growers/:operationId", { operationId })}
 							className="inline-flex min-h-11 items-center"
 						>

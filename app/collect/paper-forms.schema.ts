@@ -1,0 +1,21 @@
+import { z } from "zod";
+
+export const paperFilters = ["not_answered", "no_address"] as const;
+export const paperLanguages = ["own", "en", "es", "both"] as const;
+export const paperSizes = ["letter", "a4"] as const;
+
+/** `?show=&state=&language=&size=&page=` of the paper forms. A wrong or missing part falls back; nothing typed is an error. */
+export const PaperQuery = z.object({
+	show: z.enum(paperFilters).catch("not_answered"),
+	state: z.string().max(2).catch("all"),
+	/** The operation's own unless another, or both one after the other, is asked for. */
+	language: z.enum(paperLanguages).catch("own"),
+	size: z.enum(paperSizes).catch("letter"),
+	page: z.coerce.number().int().min(1).max(100_000).catch(1),
+});
+export type PaperQuery = z.infer<typeof PaperQuery>;
+
+/** The number on a form, by which what comes back is found: the beginning of the operation's id. */
+export function formNumberOf(operationId: string): string {
+	return operationId.slice(0, 8).toUpperCase();
+}

@@ -1,0 +1,71 @@
+import { sql } from "kysely";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
+import { listPlantingsAsked } from "./answer-rows.server.ts";
+import { findSurveyForm } from "./forms.server.ts";
+import type { PaperQuery } from "./paper-forms.schema.ts";
+import { findSurvey, isId } from "./surveys.server.ts";
+
+/** As many forms as a page of the list holds: each is a sheet or two. */
+const pageSize = 50;
+
+/**
+ * The paper forms of a survey: of one operation, or of all that have sent nothing in and have not said that they will not, by
+ * state, county and name. Each has the plantings that the survey asks about.
+ * @returns undefined for a survey or operation that is not of the viewer's states.
+ */
+export async function listPaperForms(
+	trx: Trx,
+	viewer: Associate,
+	{ surveyId, operationId }: { surveyId: string; operationId?: string },
+	query: PaperQuery,
+) {
+	const survey = await findSurvey(trx, viewer, surveyId);
+	const definition = survey && (await findSurveyForm(trx, surveyId));
+	if (!definition || (operationId !== undefined && !isId(operationId))) return undefined;
+	const matching = selectForms(trx, viewer, surveyId)
+		.$if(operationId !== undefined, (rows) => rows.where("f.operation_id", "=", operationId!))
+		.$if(operationId === undefined, (rows) => rows.where(waits))
+		.$if(operationId === undefined && query.state !== "all", (rows) => rows.where("f.state_fips", "=", query.state))
+		.$if(operationId === undefined && query.show === "no_address", (rows) =>
+			rows.where(sql<boolean>`coalesce(o.email, '') = ''`),
+		);
+	const { total } = await matching.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
+	if (operationId !== undefined && total === 0) return undefined;
+	const pageCount = Math.max(1, Math.ceil(total / pageSize));
+	const page = Math.min(query.page, pageCount);
+	const rows = await matching
+		.select(["f.operation_id as operationId", "o.name", "o.contact_name as contactName", "c.name as countyName"])
+		.select(["s.name as stateName", "o.language"])
+		.orderBy("s.name")
+		.orderBy("c.name")
+		.orderBy("o.name")
+		.orderBy("f.operation_id")
+		.limit(pageSize)
+		.offset((page - 1) * pageSize)
+		.execute();
+	const forms = [];
+	for (const row of rows) {
+		const plantings = await listPlantingsAsked(trx, { surveyId, operationId: row.operationId }, []);
+		forms.push({ ...row, language: row.language === "es" ? ("es" as const) : ("en" as const), plantings });
+	}
+	return { survey, definition, forms, total, page, pageCount };
+}
+export type PaperForms = NonNullable<Awaited<ReturnType<typeof listPaperForms>>>;
+export type PaperForm = PaperForms["forms"][number];
+
+/** Nothing came in, and nobody said that nothing will. */
+const waits = sql<boolean>`f.disposition in ('not_reached', 'undeliverable', 'reached', 'partial')
+	and not exists (select from collect.response r where r.survey_id = f.survey_id and r.operation_id = f.operation_id
+		and (r.submitted_at is not null or r.late_at is not null or r.withdrawn_at is not null))`;
+
+function selectForms(trx: Trx, viewer: Associate, surveyId: string) {
+	return trx
+		.selectFrom("collect.frame_operation as f")
+		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
+		.innerJoin("directory.county as c", "c.county_fips", "f.county_fips")
+		.innerJoin("directory.state as s", "s.state_fips", "f.state_fips")
+		.where("f.survey_id", "=", surveyId)
+		.where("f.state_fips", "in", viewer.stateFips)
+		.where("o.status", "=", "active");
+}
