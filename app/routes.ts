@@ -65,6 +65,7 @@ export default [
 	layout("routes/grower/layout.tsx", [
 		route("r/:token", "routes/grower/link.tsx"),
 		route("stop-mail/:token", "routes/grower/stop-mail.tsx"),
+		route("check/:token", "routes/grower/check-answer.tsx"),
 		...prefix("answer/:surveyId/:operationId", [
 			index("routes/grower/start.tsx"),
 			route("ask/:screen", "routes/grower/screen.tsx"),
@@ -120,6 +121,9 @@ export default [
 					route("enter/:operationId", "routes/desk/enter.tsx"),
 					route("responses", "routes/desk/responses.tsx"),
 					route("responses/:responseId", "routes/desk/response.tsx"),
+					route("checks", "routes/desk/checks.tsx"),
+					route("checks/:findingId", "routes/desk/check.tsx"),
+					route("coding", "routes/desk/coding.tsx"),
 					route("estimates", "routes/desk/estimates.tsx"),
 					route("estimates/compared", "routes/desk/estimates-compared.tsx"),
 					route("estimates/:areaKey/:cropKey/:measureKey", "routes/desk/estimate.tsx"),

@@ -24,6 +24,7 @@ export const logActions = {
 	],
 	import: ["finished", "undone"],
 	response: ["started", "submitted", "amended", "withdrawn", "taken_in", "left_out"],
+	finding: ["confirmed", "corrected", "set_aside", "reopened", "asked", "replied", "coded"],
 	release: ["drafted", "cancelled", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
 	settings: ["changed"],
 	key: ["made", "revoked"],

@@ -16,7 +16,7 @@ export type MailCount = {
 	failures: { why: MailingFailure; count: number }[];
 };
 
-const order: Mail["kind"][] = ["invitation", "new_link", "reminder", "receipt", "thank_you"];
+const order: Mail["kind"][] = ["invitation", "new_link", "reminder", "receipt", "question", "thank_you"];
 
 /** What was mailed for a survey to growers of the viewer's states: a row a kind, and one a wave of reminders. */
 export async function countMailsByKind(trx: Trx, viewer: Associate, surveyId: string): Promise<MailCount[]> {

@@ -3,7 +3,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Words } from "./form.ts";
 import { markReturned } from "./reach.server.ts";
 
-export type MailKind = "invitation" | "reminder" | "receipt" | "thank_you";
+export type MailKind = "invitation" | "reminder" | "receipt" | "thank_you" | "question";
 
 /** Why a mailing was given up: each has words on the desk's pages (`desk:mail_failure.<code>`). */
 export type MailingFailure =
@@ -18,6 +18,8 @@ export type MailingFailure =
 	| "not_asked"
 	/** The process or the connection ended while the server had the mail: it may have gone out, and is not sent twice. */
 	| "uncertain"
+	/** An associate had decided about the answer before its grower was asked. */
+	| "decided"
 	/** The mail server took nothing for days. */
 	| "server_away";
 
@@ -94,6 +96,8 @@ export function reasonNotToSend(mailing: Mailing): MailingFailure | null {
 	if (mailing.kind === "receipt") return null;
 	if (!mailing.mail_wanted) return "not_wanted";
 	if (mailing.status === "left") return "not_asked";
+	// Asked of who has answered, and after the closing too.
+	if (mailing.kind === "question") return mailing.submitted_at ? null : "not_answered";
 	if (mailing.kind === "thank_you") return mailing.submitted_at ? null : "not_answered";
 	if (mailing.submitted_at || mailing.withdrawn_at) return "answered";
 	if (!mailing.is_open) return "survey_closed";

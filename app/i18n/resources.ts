@@ -1,4 +1,5 @@
 import enAnswered from "#locales/en/answered.json" with { type: "json" };
+import enChecks from "#locales/en/checks.json" with { type: "json" };
 import enCommon from "#locales/en/common.json" with { type: "json" };
 import enDataroom from "#locales/en/dataroom.json" with { type: "json" };
 import enDesk from "#locales/en/desk.json" with { type: "json" };
@@ -12,6 +13,7 @@ import enPublic from "#locales/en/public.json" with { type: "json" };
 import enRelease from "#locales/en/release.json" with { type: "json" };
 import enReport from "#locales/en/report.json" with { type: "json" };
 import esAnswered from "#locales/es/answered.json" with { type: "json" };
+import esChecks from "#locales/es/checks.json" with { type: "json" };
 import esCommon from "#locales/es/common.json" with { type: "json" };
 import esDataroom from "#locales/es/dataroom.json" with { type: "json" };
 import esDesk from "#locales/es/desk.json" with { type: "json" };
@@ -29,6 +31,7 @@ import esReport from "#locales/es/report.json" with { type: "json" };
 export const resources = {
 	en: {
 		answered: enAnswered,
+		checks: enChecks,
 		common: enCommon,
 		dataroom: enDataroom,
 		desk: enDesk,
@@ -44,6 +47,7 @@ export const resources = {
 	},
 	es: {
 		answered: esAnswered,
+		checks: esChecks,
 		common: esCommon,
 		dataroom: esDataroom,
 		desk: esDesk,

@@ -7,13 +7,15 @@ import { stopAddressOf } from "#app/mail/stop-token.server.ts";
 import { writeLetter } from "#app/mail/templates.ts";
 import { messageIdOf, type OutgoingMail, senderName } from "#app/mail/transport.server.ts";
 import { mailWords } from "#app/mail/words.server.ts";
+import { composeQuestion } from "./compose-question.server.ts";
 
 /**
  * A mailing as it goes out, in the language the grower answered in, or is known to read, with times on the clock of the
  * operation's state.
- * @param link the personal link of an invitation or a reminder; other mail has none.
+ * @param link the personal link of an invitation or a reminder, or of a question; other mail has none.
  */
 export async function composeMail(mailing: Mailing, link: string | null): Promise<OutgoingMail> {
+	if (mailing.kind === "question") return composeQuestion(mailing, link ?? "");
 	const language = (mailing.response_language ?? mailing.language) === "es" ? "es" : "en";
 	const t = await mailWords(language);
 	// A receipt was asked for by sending in: it is no mail that one stops.

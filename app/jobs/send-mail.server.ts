@@ -8,6 +8,7 @@ import {
 	reasonNotToSend,
 	takeMailing,
 } from "#app/collect/survey-mailing.server.ts";
+import { openQuestion } from "#app/review/edit-question.server.ts";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { type OutgoingMail, sendMail as deliver, type SendOutcome } from "#app/mail/transport.server.ts";
@@ -40,12 +41,21 @@ async function prepare(trx: Trx, mailingId: string): Promise<{ mailing: Mailing;
 		await markMailingFailed(trx, mailing, reason);
 		return null;
 	}
+	if (mailing.kind === "question") return prepareQuestion(trx, mailing);
 	if (mailing.kind !== "invitation" && mailing.kind !== "reminder") return { mailing, link: null };
 	// Committed before the mail server hears of it: a link in a grower's hands always works. It stands beside the links of
 	// earlier mails, which work on until the survey closes or somebody asks for a new one.
 	const { survey_id: surveyId, operation_id: operationId, closes_at: expiresAt } = mailing;
 	const token = await createPersonalLink(trx, { surveyId, operationId, mailingId, expiresAt });
 	return { mailing, link: `${env().BASE_URL}/r/${token}` };
+}
+
+/** Its link opens one question about one answer, and no survey. */
+async function prepareQuestion(trx: Trx, mailing: Mailing): Promise<{ mailing: Mailing; link: string } | null> {
+	const token = await openQuestion(trx, mailing.mailing_id);
+	if (token) return { mailing, link: `${env().BASE_URL}/check/${token}` };
+	await markMailingFailed(trx, mailing, "decided");
+	return null;
 }
 
 async function handOver(mailing: Mailing, mail: OutgoingMail, lastTry: boolean): Promise<void> {

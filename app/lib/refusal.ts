@@ -14,6 +14,7 @@ const statusOf = {
 	import_not_found: 404,
 	orchard_not_found: 404,
 	response_not_found: 404,
+	finding_not_found: 404,
 	release_not_found: 404,
 	release_withdrawn: 410,
 	report_not_found: 404,

@@ -4,7 +4,8 @@ import type { Act, Correction } from "./reviewed-answers.ts";
 
 /** A decision as it was kept, with who made it. */
 export type KeptCorrection = Correction & {
-	correctionId: string;
+	/** Rises with time, over all responses. */
+	number: number;
 	editFindingId: string | null;
 	reason: string;
 	madeBy: string;
@@ -32,7 +33,7 @@ function selectCorrections(trx: Trx) {
 		.selectFrom("collect.correction as c")
 		.leftJoin("auth.person as p", "p.person_id", "c.made_by")
 		.select([
-			"c.correction_id as correctionId",
+			"c.number",
 			"c.question_key as questionKey",
 			"c.planting_id as plantingId",
 			"c.edit_finding_id as editFindingId",

@@ -5,9 +5,9 @@ import { crops } from "#app/directory/crops.ts";
 import { type Harvest, inventHarvest, inventPicking } from "./harvest.ts";
 import type { SeedOperation } from "./operations.ts";
 import type { Place } from "./places.ts";
-import { pickWeighted, type Random } from "./random.ts";
+import { pickWeighted, type Random, seededRandom } from "./random.ts";
 import { freezeAt, type Season } from "./seasons.ts";
-import { comments, freezeComments } from "./words.ts";
+import { comments, freezeComments, otherCauseWords } from "./words.ts";
 
 const bushelOf = new Map(crops.map(({ cropKey, bushelLb }) => [cropKey, bushelLb]));
 
@@ -25,12 +25,22 @@ export function inventAnswers(
 	const harvests = inventHarvest(random, season, place, operation.plantings).map((harvest) =>
 		tell(random, operation, harvest),
 	);
+	const causesTold = causeAnswers(random, season, harvests);
 	return [
 		...harvests.flatMap(({ answers }) => answers),
-		...causeAnswers(random, season, harvests),
+		...causesTold,
 		...dayAnswers(random, season, place, harvests, until),
 		...nextYearAnswers(random, season, operation, place, harvests),
+		...otherCauseTold(season, operation, causesTold),
 	];
+}
+
+/** What else took fruit, in words, of most who told that something else did. Drawn apart, so that nothing else changes by it. */
+function otherCauseTold({ season }: Season, { operation_id, language }: SeedOperation, told: Answer[]): Answer[] {
+	const other = told.find(({ questionKey }) => questionKey === "cause_other");
+	const own = seededRandom(`other cause ${season} ${operation_id}`);
+	if (typeof other?.value !== "number" || other.value === 0 || own.chance(0.2)) return [];
+	return [plain("other_cause", own.pick(otherCauseWords[language]))];
 }
 
 type Told = Harvest & { answers: Answer[] };

@@ -78,6 +78,21 @@ export const freezeComments = {
 	],
 } as const;
 
+/** What growers name when something else took fruit: some of it has a place in the form's own list. */
+export const otherCauseWords = {
+	en: [
+		"Deer in the young rows",
+		"spray drift from next door",
+		"Could not find pickers",
+		"the cold in May",
+		"raccoons",
+		"Hail, twice",
+		"cracked after all that rain",
+		"Irrigation pump broke",
+	],
+	es: ["No hubo quien cosechara", "los pájaros", "granizo en junio", "Se descompuso la bomba de riego"],
+} as const;
+
 /** What the associate adds to a season's report, without a figure: those are references into the release. */
 export const reportWords: Record<number, { en: string; es: string }> = {
 	2024: {

@@ -89,3 +89,15 @@ export async function factOf(owner: Client, surveyId: string, operationId: strin
 	);
 	return rows[0] as { y: number; x: number; setAside: boolean } | undefined;
 }
+
+/** Nine orchards that fared alike and a tenth with an odd crop, gone through; the tenth's findings wait. */
+export async function oddSurvey(owner: Client, associate: Associate, tenth: Partial<Picked> = {}) {
+	const now = orchards({ trees: 40, normal: 40_000, picked: 30_000, ...tenth });
+	const operations = await addOrchards(owner, now);
+	const surveyId = await answerAll(associate, operations, now, 2031);
+	await check(surveyId);
+	const { operationId, plantingId } = operations[9]!;
+	const findings = await findingsOf(owner, surveyId, operationId);
+	const findingOf = (question: string) => findings.find(({ question_key }) => question_key === question)!;
+	return { surveyId, operationId, plantingId, operations, findings, findingOf };
+}

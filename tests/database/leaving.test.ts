@@ -100,6 +100,7 @@ async function grower() {
 	const viewer: Grower = { ...growerOf(operationId), person };
 	await keepListWork(operationId, names);
 	const released = await answered(viewer, operationId, names.comment);
+	await keepReview(released, names);
 	await addRelease(released);
 	const closed = await answered(viewer, operationId, names.comment);
 	await asDesk(iowa, (trx) => closeSurvey(trx, iowa, closed.surveyId));
@@ -144,6 +145,26 @@ async function keepDeskWork(open: AnswerPlace, closed: AnswerPlace, names: Names
 		`insert into collect.late_decision (response_id, version, taken, reason, decided_by)
 		select response_id, 1, false, $2, $3 from collect.response where survey_id = $1`,
 		[closed.surveyId, names.reason, iowa.personId],
+	);
+}
+
+/** What review leaves of a grower: words of calls, a code for what was told in words, a reason that names the grower. */
+async function keepReview({ surveyId, operationId }: AnswerPlace, names: Names): Promise<void> {
+	const { rows } = await owner.query(
+		`insert into collect.edit_finding (response_id, check_kind, check_key, question_key, about, about_key)
+		select response_id, 'logic', 'said', 'comment', jsonb_build_array(jsonb_build_object('value', $3::text)), 'none'
+		from collect.response where survey_id = $1 and operation_id = $2 returning edit_finding_id, response_id`,
+		[surveyId, operationId, names.comment],
+	);
+	const { edit_finding_id: findingId, response_id: responseId } = rows[0];
+	await owner.query("insert into collect.edit_finding_step (edit_finding_id, step, words) values ($1, 'asked', $2)", [
+		findingId,
+		names.contact,
+	]);
+	await owner.query(
+		`insert into collect.correction (response_id, question_key, edit_finding_id, act, was, answer, reason, made_by)
+		values ($1, 'comment', $2, 'coded', jsonb_build_object('value', $3::text), '{"codes": []}', $4, $5)`,
+		[responseId, findingId, names.comment, names.contact, iowa.personId],
 	);
 }
 
@@ -210,17 +231,18 @@ const sent = async ({ surveyId, operationId }: AnswerPlace) => {
 };
 
 const listWork = ["directory.import_row", "directory.merge"];
+const review = ["collect.correction", "collect.edit_finding_step"];
 
 test("nothing by which a grower is known is left in any column of any table", async () => {
 	const { names, operationId, viewer } = await grower();
 	expect(await held(names)).toEqual({
 		operation: [...listWork, "directory.operation", "directory.owner"],
-		contact: ["collect.contact", ...listWork, "directory.operation", "directory.saved_view"],
+		contact: ["collect.contact", ...review, ...listWork, "directory.operation", "directory.saved_view"],
 		email: ["auth.person", ...listWork, "directory.operation"],
 		phone: [...listWork, "directory.operation"],
 		account: ["auth.person"],
 		subject: ["auth.person"],
-		comment: ["collect.answer", "collect.submission"],
+		comment: ["collect.answer", "collect.correction", "collect.edit_finding", "collect.submission"],
 		unsent: ["collect.answer"],
 		typed: ["collect.entry_draft"],
 		reason: ["collect.late_decision"],

@@ -88,6 +88,7 @@ const asksNobody: Record<string, string> = {
 	"app/routes/grower/offline.tsx": "the page that a phone draws its own survey in, and that shows nothing of anybody",
 	"app/routes/grower/worker.ts": "the service worker's script, the same for everybody",
 	"app/routes/grower/link.tsx": "a personal link's own token says who asks",
+	"app/routes/grower/check-answer.tsx": "a question's own token says who is asked",
 	"app/routes/grower/stop-mail.tsx": "a token out of a mail says whose mail is to stop",
 };
 

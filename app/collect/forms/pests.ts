@@ -4,6 +4,9 @@ import { noteQuestion } from "./note.ts";
 import { photoScreen } from "./photos.ts";
 import { type Pest, pests as list } from "./pest-list.ts";
 
+/** The option under which growers tell in words what the list lacks. */
+const otherKey = "other";
+
 const isSeen = ({ key }: Pest): Condition => ({ compare: "=", question: "seen", to: { value: key } });
 
 const seen: Screen = {
@@ -27,8 +30,30 @@ const seen: Screen = {
 			sensitive: false,
 			options: [
 				...list.map(({ key, name, crops }) => ({ key, text: name, crops: [...crops] })),
+				{ key: otherKey, text: { en: "Something else", es: "Otra cosa" } },
 				{ key: "none", text: { en: "None of these", es: "Ninguna de estas" }, alone: true },
 			],
+		},
+	],
+};
+
+/** What the list lacks, told in words; an associate can give it a code, and it counts as seen. */
+const otherScreen: Screen = {
+	key: "other_pest",
+	title: { en: "Something else", es: "Otra cosa" },
+	perPlanting: true,
+	condition: { compare: "=", question: "seen", to: { value: otherKey } },
+	whenUnsure: "skip",
+	questions: [
+		{
+			key: "other_pest",
+			type: "short_text",
+			text: { en: "What else did you see in this planting?", es: "¿Qué otra cosa vio en esta plantación?" },
+			label: { en: "What else you saw", es: "Qué otra cosa vio" },
+			required: false,
+			maxLength: 200,
+			sensitive: false,
+			codes: { adds: "seen" },
 		},
 	],
 };
@@ -179,6 +204,7 @@ export const pests: FormDefinition = {
 	screens: [
 		seen,
 		...list.map(pestScreen),
+		otherScreen,
 		photoScreen(
 			{ en: "Photos of the pest or disease", es: "Fotos de la plaga o enfermedad" },
 			{

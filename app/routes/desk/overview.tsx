@@ -3,11 +3,13 @@ import { href, Link } from "react-router";
 import type { Route } from "./+types/overview";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { countDueCalls } from "#app/collect/calls.server.ts";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
 import { CountQuery } from "#app/collect/desk-lists.schema.ts";
 import { countMailings } from "#app/collect/invitations.server.ts";
 import { countLateWaiting } from "#app/collect/late-answers.server.ts";
 import { listCountyCounts } from "#app/collect/response-counts.server.ts";
-import { listSurveys } from "#app/collect/surveys.server.ts";
+import { listSurveys, type Survey } from "#app/collect/surveys.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { Page } from "#app/components/page.tsx";
@@ -15,6 +17,7 @@ import { Section } from "#app/components/section.tsx";
 import { TallyCount } from "#app/components/tally-count.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { countOpenFindings } from "#app/review/findings.server.ts";
 import { listReleaseWork } from "#app/release/release-work.server.ts";
 import { CountyCounts } from "./parts/county-counts.tsx";
 import { TodayList } from "./parts/today-list.tsx";
@@ -38,6 +41,7 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 		const counted = open.find((survey) => survey.surveyId === query.survey) ?? open[0];
 		return {
 			open,
+			toCheck: await listToCheck(trx, viewer, surveys),
 			drafts: surveys.filter((survey) => survey.state === "draft"),
 			late: (await countLateWaiting(trx, viewer)).flatMap(({ surveyId, waiting }) =>
 				surveys.filter((survey) => survey.surveyId === surveyId).map((survey) => ({ ...survey, waiting })),
@@ -49,6 +53,15 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 				...(await listCountyCounts(trx, viewer, counted.surveyId, query)),
 			},
 		};
+	});
+}
+
+/** The surveys with answers to check, how many each. */
+async function listToCheck(trx: Trx, viewer: Associate, surveys: Survey[]) {
+	const open = await countOpenFindings(trx, viewer);
+	return surveys.flatMap(({ surveyId, season, title }) => {
+		const count = open.get(surveyId) ?? 0;
+		return count > 0 ? [{ surveyId, season, title, count }] : [];
 	});
 }
 

@@ -11,6 +11,8 @@ import { EmptyState } from "#app/components/empty-state.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import { listResponseDecisions } from "./parts/checks/response-decisions.server.ts";
+import { ResponseDecisions } from "./parts/checks/response-decisions.tsx";
 import { useGrowerName } from "./parts/grower-name.ts";
 
 const Version = z.coerce.number().int().optional().catch(undefined);
@@ -20,7 +22,8 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const version = Version.parse(new URL(request.url).searchParams.get("version") ?? undefined);
 	const response = await desk.transaction(async (trx) => {
 		const survey = await findSurvey(trx, desk.viewer, params.surveyId);
-		return survey && findResponse(trx, desk.viewer, params, version);
+		const found = survey && (await findResponse(trx, desk.viewer, params, version));
+		return found && { ...found, decisions: await listResponseDecisions(trx, params.surveyId, params.responseId) };
 	});
 	if (!response) throw refusal("response_not_found");
 	return response;
@@ -73,6 +76,7 @@ export default function ResponsePage({ loaderData: response, params }: Route.Com
 						</Link>
 					</p>
 				)}
+				<ResponseDecisions decisions={response.decisions} surveyId={params.surveyId} timeZone={timeZone} />
 				{response.shownVersion === null ? (
 					<div className="mt-8">
 						<NothingSent response={response} />

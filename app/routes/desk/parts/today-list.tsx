@@ -14,6 +14,7 @@ type OpenSurvey = Named & {
 	dueCalls: number;
 };
 type TodayListProps = {
+	toCheck: (Named & { count: number })[];
 	open: OpenSurvey[];
 	drafts: Named[];
 	/** Surveys with answers that came after the closing, and how many of them wait. */
@@ -47,7 +48,7 @@ export function TodayList(props: TodayListProps) {
 
 const page = ({ surveyId }: Named) => href("/desk/surveys/:surveyId", { surveyId });
 
-function useTasks({ open, drafts, late, releases }: TodayListProps): Task[] {
+function useTasks({ open, toCheck, drafts, late, releases }: TodayListProps): Task[] {
 	const { t, i18n } = useTranslation("desk");
 	const format = useFormat();
 	const nameOf = ({ title, season }: Named) => t("surveys.name", { title: wordsIn(title, i18n.language), season });
@@ -83,6 +84,11 @@ function useTasks({ open, drafts, late, releases }: TodayListProps): Task[] {
 			text: counted("withoutAddress", survey, survey.mailings.withoutAddress),
 		},
 	]);
+	const ofChecks = toCheck.map((survey) => ({
+		key: `check ${survey.surveyId}`,
+		to: href("/desk/surveys/:surveyId/checks", { surveyId: survey.surveyId }),
+		text: t("checks:overview", { survey: nameOf(survey), count: survey.count, value: format.number(survey.count) }),
+	}));
 	const ofDrafts = drafts.map((survey) => ({
 		key: `open ${survey.surveyId}`,
 		to: page(survey),
@@ -102,5 +108,5 @@ function useTasks({ open, drafts, late, releases }: TodayListProps): Task[] {
 		to: href("/desk/surveys/:surveyId/release", { surveyId: survey.surveyId }),
 		text: t(`overview.task.release.${survey.work}`, { survey: nameOf(survey) }),
 	}));
-	return [...ofOpen.filter((task) => task !== false), ...ofDrafts, ...ofLate, ...ofReleases];
+	return [...ofChecks, ...ofOpen.filter((task) => task !== false), ...ofDrafts, ...ofLate, ...ofReleases];
 }

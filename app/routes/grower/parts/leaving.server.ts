@@ -2,6 +2,7 @@ import { forgetGrantees } from "#app/auth/forgetting.server.ts";
 import { type Trx, underScope } from "#app/auth/scope.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
 import { forgetAnswers } from "#app/collect/forgetting.server.ts";
+import { forgetFindings } from "#app/review/forgetting.server.ts";
 import { forgetOperation, forgetOwner, freeMergedInto, lockOwnOperation } from "#app/directory/leaving.server.ts";
 
 /**
@@ -20,6 +21,7 @@ export async function leave(
 	await underScope(trx, { kind: "grower", operationIds }, async () => {
 		for (const one of [operation, ...duplicates]) {
 			await forgetAnswers(trx, { ...viewer, operationIds }, one.operationId);
+			await forgetFindings(trx, one.operationId);
 			await forgetOperation(trx, one);
 		}
 	});

@@ -1,0 +1,146 @@
+import { type RawBuilder, sql } from "kysely";
+import type { Trx } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
+import type { Answer } from "#app/collect/form.ts";
+import type { FindingsQuery } from "./findings.schema.ts";
+import type { CheckKind, Odd } from "./odd-answers.ts";
+import type { FindingEnd, FindingStep, Moved } from "./save-findings.server.ts";
+
+const pageSize = 50;
+
+export type Finding = Awaited<ReturnType<typeof findFinding>> & {};
+
+/** A page of the queue. Equal values are ordered by id, so that no finding shows twice or never while paging. */
+export async function listFindings(trx: Trx, viewer: Associate, surveyId: string, query: FindingsQuery) {
+	const matching = narrow(selectFindings(trx, viewer, surveyId), query);
+	const { total } = await matching
+		.clearSelect()
+		.select((eb) => eb.fn.countAll<number>().as("total"))
+		.executeTakeFirstOrThrow();
+	const pageCount = Math.max(1, Math.ceil(total / pageSize));
+	const page = Math.min(query.page, pageCount);
+	const rows = await matching
+		.orderBy(sortColumn[query.sort], (order) => order[query.direction]().nullsLast())
+		.orderBy("f.edit_finding_id")
+		.limit(pageSize)
+		.offset((page - 1) * pageSize)
+		.execute();
+	return { rows, total, page, pageCount };
+}
+
+/** @returns undefined outside the viewer's states, for another survey's finding, and where the answers were taken back. */
+export async function findFinding(trx: Trx, viewer: Associate, surveyId: string, findingId: string) {
+	return selectFindings(trx, viewer, surveyId).where("f.edit_finding_id", "=", findingId).executeTakeFirst();
+}
+
+/** How many answers of each survey wait to be checked, in the viewer's states. */
+export async function countOpenFindings(trx: Trx, viewer: Associate): Promise<Map<string, number>> {
+	const rows = await trx
+		.selectFrom("collect.edit_finding as f")
+		.innerJoin("collect.response as r", "r.response_id", "f.response_id")
+		.where("r.state_fips", "in", viewer.stateFips)
+		.where("r.submitted_at", "is not", null)
+		.where("f.outcome", "is", null)
+		.groupBy("r.survey_id")
+		.select(["r.survey_id", sql<number>`count(*)::int`.as("open")])
+		.execute();
+	return new Map(rows.map(({ survey_id, open }) => [survey_id, open]));
+}
+
+/** What happened to a finding, oldest first. The caller has found it. */
+export async function listSteps(trx: Trx, findingId: string) {
+	return trx
+		.selectFrom("collect.edit_finding_step as s")
+		.leftJoin("auth.person as p", "p.person_id", "s.person_id")
+		.where("s.edit_finding_id", "=", findingId)
+		.orderBy("s.number")
+		.select(["s.number", sql<FindingStep>`s.step`.as("step"), "s.words", "s.at", "p.display_name as personName"])
+		.execute();
+}
+
+/** The one place that says whose findings an associate can see. */
+function selectFindings(trx: Trx, viewer: Associate, surveyId: string) {
+	return (
+		trx
+			.selectFrom("collect.edit_finding as f")
+			.innerJoin("collect.response as r", "r.response_id", "f.response_id")
+			.innerJoin("collect.frame_operation as o", (join) =>
+				join.onRef("o.survey_id", "=", "r.survey_id").onRef("o.operation_id", "=", "r.operation_id"),
+			)
+			.innerJoin("directory.operation as d", "d.operation_id", "r.operation_id")
+			.innerJoin("directory.county as c", "c.county_fips", "o.county_fips")
+			.innerJoin("directory.state as s", "s.state_fips", "o.state_fips")
+			.leftJoin("directory.planting as p", "p.planting_id", "f.planting_id")
+			.leftJoin("collect.edit_question as q", "q.edit_finding_id", "f.edit_finding_id")
+			.leftJoin("auth.person as b", "b.person_id", "f.closed_by")
+			.where("r.survey_id", "=", surveyId)
+			.where("r.state_fips", "in", viewer.stateFips)
+			// Answers that their grower took back are nobody's to read but theirs.
+			.where("r.submitted_at", "is not", null)
+			.select([
+				"f.edit_finding_id as findingId",
+				"f.version",
+				"r.response_id as responseId",
+				"r.operation_id as operationId",
+				"o.state_fips as stateFips",
+				"o.county_fips as countyFips",
+				"o.stratum_key as stratumKey",
+				"c.district_key as districtKey",
+				"d.name as operationName",
+				"d.contact_name as contactName",
+				"d.phone",
+				"c.name as countyName",
+				"s.postal as statePostal",
+				"s.time_zone as timeZone",
+				"f.check_key as checkKey",
+				"f.question_key as questionKey",
+				"f.planting_id as plantingId",
+				"f.crop_key as cropKey",
+				"p.cultivar",
+				"f.effect",
+				"f.made_at as madeAt",
+				"f.closed_at as closedAt",
+				"f.closed_by as closedById",
+				"b.display_name as closedBy",
+				"q.asked_at as askedAt",
+				"q.replied_at as repliedAt",
+				sql<CheckKind>`f.check_kind`.as("checkKind"),
+				sql<Answer[]>`f.about`.as("about"),
+				sql<Odd["told"]>`f.told`.as("told"),
+				sql<Moved | null>`f.moved`.as("moved"),
+				sql<FindingEnd | null>`f.outcome`.as("outcome"),
+				sql<"right" | "wrong" | null>`q.reply`.as("reply"),
+			])
+	);
+}
+
+const sortColumn = {
+	effect: sql`f.effect`,
+	grower: sql`d.name`,
+	county: sql`c.name`,
+	kind: sql`f.check_kind`,
+	made: sql`f.made_at`,
+};
+
+const stateConditions: Partial<Record<FindingsQuery["state"], RawBuilder<boolean>>> = {
+	asked: sql<boolean>`(q.asked_at is not null and q.reply is null)`,
+	said_right: sql<boolean>`q.reply = 'right'`,
+	said_wrong: sql<boolean>`q.reply = 'wrong'`,
+	confirmed_by_grower: sql<boolean>`coalesce((f.told ->> 'confirmedByGrower')::boolean, false)`,
+};
+
+function narrow(rows: ReturnType<typeof selectFindings>, query: FindingsQuery) {
+	const { show, kind, crop, area, state } = query;
+	const condition = stateConditions[state];
+	return rows
+		.where("f.outcome", show === "open" ? "is" : "is not", null)
+		.$if(kind !== "all", (some) => some.where("f.check_kind", "=", kind))
+		.$if(crop !== "all", (some) => some.where("f.crop_key", "=", crop))
+		.$if(area !== "all", (some) =>
+			some.where(sql<boolean>`${area} in (o.county_fips, o.state_fips, coalesce(c.district_key, ''))`),
+		)
+		.$if(condition !== undefined, (some) => some.where(condition!))
+		.$if(show === "ended" && state !== "all" && condition === undefined, (some) =>
+			some.where(sql<boolean>`f.outcome = ${state}`),
+		);
+}
