@@ -1,4 +1,5 @@
 import type { Kysely } from "kysely";
+import { groupBy } from "#app/lib/group-by.ts";
 import { reader, type ReaderDB } from "./reader.server.ts";
 import { type Release, type ReleaseArea, type ReleaseMeasure, toHue, toMethod, toRules, toWords } from "./release.ts";
 
@@ -112,6 +113,21 @@ export async function listRespondentsBands(db: Reader = reader()): Promise<Recor
 		.where("c.status", "=", "shown")
 		.execute();
 	return Object.fromEntries(rows.map((row) => [row.release_id, row.respondents_band!]));
+}
+
+/** The states of every release, as FIPS codes in order, by the release's id. */
+export async function listStatesByRelease(db: Reader = reader()): Promise<Record<string, string[]>> {
+	const rows = await db
+		.selectFrom("release.area")
+		.select(["release_id", "state_fips"])
+		.distinct()
+		.where("kind", "=", "county")
+		.where("state_fips", "is not", null)
+		.orderBy("state_fips")
+		.execute();
+	return Object.fromEntries(
+		[...groupBy(rows, (row) => row.release_id)].map(([id, of]) => [id, of.map((row) => row.state_fips!)]),
+	);
 }
 
 /** The states whose counties a release covers, as FIPS codes. */

@@ -70,6 +70,9 @@ function FileLinks({ number }: { number: number }) {
 			<a href={address("cells.csv")} download>
 				{t("home.cells", { number })}
 			</a>
+			<a href={address(`tallygrove-release-${number}.zip`)} download>
+				{t("home.archive", { number })}
+			</a>
 			<a href={address("codebook.csv")} download>
 				{t("home.codebook", { number })}
 			</a>

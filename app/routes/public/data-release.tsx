@@ -3,40 +3,100 @@ import { href, Link } from "react-router";
 import { z } from "zod";
 import type { Route } from "./+types/data-release";
 import { ButtonLink } from "#app/components/button.tsx";
-import { DescriptionList } from "#app/components/description-list.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
+import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { env } from "#app/lib/env.server.ts";
+import { helpContact } from "#app/lib/help-contact.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { countCells, findRelease, listCrops, listEditions, listMeasures } from "#app/publish/releases.server.ts";
+import { listCellPage } from "#app/publish/api/list-cells.server.ts";
+import { dcatDataset, schemaOrgDataset } from "#app/publish/catalogue-record.ts";
+import { findChanges } from "#app/publish/changes.server.ts";
+import { listFiles } from "#app/publish/release-files.server.ts";
 import type { Release } from "#app/publish/release.ts";
+import {
+	countCells,
+	findRelease,
+	listCoveredStates,
+	listCrops,
+	listEditions,
+	listMeasures,
+	listRespondentsBands,
+} from "#app/publish/releases.server.ts";
 import { Codebook } from "./parts/codebook.tsx";
-import { ReleaseNotice, ReleaseState } from "./parts/release-state.tsx";
+import { ReleaseNotice } from "./parts/release-state.tsx";
+import { ReleaseCitation } from "./parts/release/release-citation.tsx";
+import { Editions } from "./parts/release/release-editions.tsx";
+import { ReleaseFacts } from "./parts/release/release-facts.tsx";
+import { ReleaseFiles } from "./parts/release/release-files.tsx";
+import { previewColumns, type PreviewRow, ReleasePreview } from "./parts/release/release-preview.tsx";
 
 const Number = z.coerce.number().int().positive().max(2_147_483_647);
+const previewRows = 8;
 
-export async function loader({ params }: Route.LoaderArgs) {
+export async function loader({ context, params }: Route.LoaderArgs) {
 	const number = Number.safeParse(params.release);
 	const release = number.success ? await findRelease(number.data) : undefined;
 	if (!release) throw refusal("release_not_found");
-	const [editions, measures, crops, counties, districts] = await Promise.all([
-		listEditions(release.seriesId),
-		listMeasures(release.releaseId),
-		listCrops(release.releaseId),
-		countCells(release.releaseId, "county"),
-		countCells(release.releaseId, "district"),
+	const { releaseId } = release;
+	const editions = await listEditions(release.seriesId);
+	const previous = editions.find(({ edition }) => edition === release.edition - 1) ?? null;
+	const [measures, crops, counties, districts, files, states, bands, changes, preview] = await Promise.all([
+		listMeasures(releaseId),
+		listCrops(releaseId),
+		countCells(releaseId, "county"),
+		countCells(releaseId, "district"),
+		listFiles(releaseId),
+		listCoveredStates(releaseId),
+		listRespondentsBands(),
+		findChanges(releaseId, previous?.releaseId ?? null),
+		listPreview(release),
 	]);
+	const language = getLanguage(context);
+	const t = getT(context, "public");
+	const places = states.map((state) => t(`common:state.${state}`));
+	const told = {
+		release,
+		measures,
+		files,
+		places,
+		language,
+		title: t("data.named", { number: release.number, title: wordsIn(release.title, language), season: release.season }),
+		description: t("data.one.description", { season: release.season, places: places.join(", ") }),
+		network: t("data.one.network"),
+		email: helpContact.email,
+		site: env().BASE_URL,
+		previous: previous && `${env().BASE_URL}/data/${previous.number}`,
+	};
 	return {
 		release,
 		editions,
+		changes,
 		measures,
 		crops,
 		counties,
 		districts,
+		files,
+		places,
+		preview,
+		band: bands[releaseId] ?? null,
 		address: `${env().BASE_URL}/data/${release.number}`,
+		described: release.withdrawn ? [] : [schemaOrgDataset(told), dcatDataset(told)],
 	};
+}
+
+/** The first rows of the widest areas, in as many columns as a page has room for. */
+async function listPreview(release: Release): Promise<PreviewRow[]> {
+	const query = { kind: ["region" as const, "state" as const], limit: previewRows };
+	const { rows } = await listCellPage(release, query, null);
+	return rows.map((row) => Object.fromEntries(previewColumns.map((name) => [name, row[name]])) as PreviewRow);
+}
+
+/** What catalogues and search engines read of the release. */
+export function meta({ loaderData }: Route.MetaArgs) {
+	return (loaderData?.described ?? []).map((record) => ({ "script:ld+json": record }));
 }
 
 export default function DataRelease({ loaderData }: Route.ComponentProps) {
@@ -57,8 +117,8 @@ export default function DataRelease({ loaderData }: Route.ComponentProps) {
 				release.withdrawn ? null : (
 					<>
 						<ButtonLink to={`${href("/map")}?release=${release.number}`}>{t("home.openMap")}</ButtonLink>
-						<ButtonLink to={href("/dataroom")} kind="secondary">
-							{t("data.files.link")}
+						<ButtonLink to={href("/api")} kind="secondary">
+							{t("data.api")}
 						</ButtonLink>
 					</>
 				)
@@ -66,115 +126,45 @@ export default function DataRelease({ loaderData }: Route.ComponentProps) {
 		>
 			<ReleaseNotice release={release} />
 			<Section title={t("data.one.facts")}>
-				<Facts data={loaderData} />
+				<ReleaseFacts {...loaderData} />
 			</Section>
 			{crops.length > 0 && (
 				<Section title={t("data.one.crops")}>
 					<p>{format.list(crops.map((crop) => t(`common:crop.${crop}`)))}</p>
 				</Section>
 			)}
+			{!release.withdrawn && (
+				<>
+					<Section title={t("data.files.title")}>
+						<ReleaseFiles number={release.number} files={loaderData.files} />
+					</Section>
+					<Section title={t("data.one.preview")}>
+						<ReleasePreview rows={loaderData.preview} />
+					</Section>
+				</>
+			)}
 			<Codebook measures={measures} />
 			{loaderData.editions.length > 1 && (
 				<Section title={t("data.one.editions")}>
-					<Editions editions={loaderData.editions} own={release.number} />
+					<Editions editions={loaderData.editions} own={release.number} changes={loaderData.changes} />
 				</Section>
 			)}
 			<Section title={t("data.one.cite")}>
-				<p className="max-w-prose border-l-4 border-damson bg-damson-wash px-5 py-4">
-					{t("data.one.citation", {
+				<ReleaseCitation
+					number={release.number}
+					checksum={release.checksum}
+					text={t("data.one.citation", {
 						network: t("data.one.network"),
 						year,
 						title: wordsIn(release.title, i18n.language),
 						number: release.number,
 						address,
 					})}
-				</p>
-				<p className="mt-3 max-w-prose text-sm text-quiet">{t("data.one.frozen", { checksum: release.checksum })}</p>
+				/>
 				<p className="mt-3">
 					<Link to={href("/methods")}>{t("report.toMethods")}</Link>
 				</p>
 			</Section>
 		</Page>
 	);
-}
-
-function Editions({ editions, own }: { editions: Release[]; own: number }) {
-	const { t } = useTranslation("public");
-	const format = useFormat();
-	return (
-		<ul className="space-y-2">
-			{editions.map((edition) => (
-				<li key={edition.releaseId} className="flex flex-wrap items-center gap-x-4 gap-y-1">
-					<Link
-						to={href("/data/:release", { release: `${edition.number}` })}
-						aria-current={edition.number === own ? "page" : undefined}
-					>
-						{t("data.one.edition", {
-							edition: format.number(edition.edition),
-							number: edition.number,
-							date: format.dayOf(edition.publishedAt),
-						})}
-					</Link>
-					<ReleaseState release={edition} />
-				</li>
-			))}
-		</ul>
-	);
-}
-
-function Facts({ data: { release, counties, districts } }: { data: Route.ComponentProps["loaderData"] }) {
-	const { t } = useTranslation("public");
-	const format = useFormat();
-	const { rules, method } = release;
-	const percent = (fraction: number) => format.quantity(fraction * 100, "percent");
-	const counted = (counts: typeof counties) =>
-		t("data.one.counted", {
-			shown: format.number(counts.shown),
-			withheld: format.number(counts.withheld),
-			noGrowers: format.number(counts.no_growers),
-		});
-	const items = [
-		{ term: t("data.published"), detail: format.moment(release.publishedAt) },
-		method.openedAt &&
-			method.closedAt && {
-				term: t("data.one.asked"),
-				detail: t("data.one.askedFromTo", { from: format.dayOf(method.openedAt), to: format.dayOf(method.closedAt) }),
-			},
-		method.all && {
-			term: t("data.answered"),
-			detail: t("data.one.answeredOf", {
-				answered: format.number(method.all.answered),
-				asked: format.number(method.all.asked),
-			}),
-		},
-		...(method.states ?? []).map(({ stateFips, asked, answered }) => ({
-			term: t("data.one.answeredIn", { state: t(`common:state.${stateFips}`) }),
-			detail: t("data.one.answeredOf", { answered: format.number(answered), asked: format.number(asked) }),
-		})),
-		!release.withdrawn && { term: t("data.one.countyCells"), detail: counted(counties) },
-		!release.withdrawn && { term: t("data.one.districtCells"), detail: counted(districts) },
-		rules.minimumOwners && {
-			term: t("data.one.minimum"),
-			detail: t("data.one.minimumOwners", { count: rules.minimumOwners, value: format.number(rules.minimumOwners) }),
-		},
-		rules.dominancePercent && {
-			term: t("data.one.dominance"),
-			detail: t("data.one.dominanceRule", { percent: format.quantity(rules.dominancePercent, "percent") }),
-		},
-		rules.steadyCv &&
-			rules.careCv && {
-				term: t("data.one.cutOffs"),
-				detail: t("data.one.cutOffsRule", { steady: percent(rules.steadyCv), care: percent(rules.careCv) }),
-			},
-		rules.steadyDays &&
-			rules.careDays && {
-				term: t("data.one.dayCutOffs"),
-				detail: t("data.one.dayCutOffsRule", {
-					steady: format.quantity(rules.steadyDays, "days"),
-					care: format.quantity(rules.careDays, "days"),
-				}),
-			},
-		{ term: t("data.one.codeVersion"), detail: release.codeVersion },
-	];
-	return <DescriptionList items={items.filter((item) => typeof item === "object")} />;
 }
