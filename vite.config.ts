@@ -14,6 +14,9 @@ export default defineConfig({
 					name: "unit",
 					// Pure functions: no file leaves anything behind that another could meet.
 					isolate: false,
+					// Some read every source of the project, beside a browser's tests on the same two cores.
+					testTimeout: 30_000,
+					hookTimeout: 60_000,
 					include: [
 						"app/**/*.test.{ts,tsx}",
 						"db/**/*.test.ts",

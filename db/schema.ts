@@ -369,8 +369,11 @@ export interface CollectSubmission {
 }
 
 export interface CollectSurvey {
+  archived_at: Timestamp | null;
+  archived_by: string | null;
   closed_at: Timestamp | null;
   closes_at: Timestamp;
+  copied_from: string | null;
   created_at: Generated<Timestamp>;
   created_by: string | null;
   crop_keys: string[];
@@ -379,6 +382,17 @@ export interface CollectSurvey {
   season: number;
   survey_id: Generated<string>;
   title: Json;
+}
+
+export interface CollectSurveyBrief {
+  asked_by: Generated<string>;
+  decision: Generated<string>;
+  planned: Generated<Json>;
+  survey_id: string;
+  version: Generated<number>;
+  why: Generated<string>;
+  written_at: Generated<Timestamp>;
+  written_by: string;
 }
 
 export interface CollectSurveyState {
@@ -779,6 +793,7 @@ export interface DB {
   "collect.response": CollectResponse;
   "collect.submission": CollectSubmission;
   "collect.survey": CollectSurvey;
+  "collect.survey_brief": CollectSurveyBrief;
   "collect.survey_state": CollectSurveyState;
   "collect.tally": CollectTally;
   "directory.county": DirectoryCounty;

@@ -7,6 +7,9 @@ export const logActions = {
 	access: ["requested", "approved", "declined"],
 	survey: [
 		"created",
+		"copied",
+		"archived",
+		"taken_out",
 		"opened",
 		"extended",
 		"closed",

@@ -9,6 +9,7 @@ export async function listBarSurveys(trx: Trx, viewer: Associate) {
 		.where("s.survey_id", "in", (eb) =>
 			eb.selectFrom("collect.survey_state as g").select("g.survey_id").where("g.state_fips", "in", viewer.stateFips),
 		)
+		.where("s.archived_at", "is", null)
 		.select(["s.survey_id", "s.season", "s.title", "s.opened_at", "s.closed_at", "s.closes_at"])
 		.orderBy("s.season", "desc")
 		.orderBy("s.created_at", "desc")

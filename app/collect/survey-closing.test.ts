@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import { momentIn, wallClockOf } from "./survey-closing.ts";
+import { closingNextSeason, momentIn, wallClockOf } from "./survey-closing.ts";
 
 const zone = "America/Chicago";
 
@@ -29,4 +29,14 @@ describe("a closing day and time in a zone", () => {
 		const typed = { on: "2026-11-30", at: "09:05" };
 		expect(wallClockOf(momentIn(typed.on, typed.at, zone)!, zone)).toEqual(typed);
 	});
+});
+
+test("the closing of a copied survey keeps its day and time through summer time, leap days and years gone by", () => {
+	const chicago = "America/Chicago";
+	const next = (on: string, at: string, now: string) =>
+		wallClockOf(closingNextSeason(momentIn(on, at, chicago)!, chicago, new Date(now)), chicago);
+	expect(next("2026-06-30", "17:00", "2026-12-02")).toEqual({ on: "2027-06-30", at: "17:00" });
+	expect(next("2024-02-29", "08:00", "2024-03-01")).toEqual({ on: "2025-02-28", at: "08:00" });
+	expect(next("2020-05-01", "17:00", "2026-05-01T12:00:00Z")).toEqual({ on: "2026-05-01", at: "17:00" });
+	expect(next("2020-05-01", "17:00", "2026-05-02")).toEqual({ on: "2027-05-01", at: "17:00" });
 });

@@ -29,6 +29,15 @@ export function wallClockOf(moment: Date, timeZone: string): { on: string; at: s
 	return { on: wall.slice(0, 10), at: wall.slice(11, 16) };
 }
 
+/** The same day and time of a later year, the first that is still to come; the last of February where there is no 29th. */
+export function closingNextSeason(closesAt: Date, timeZone: string, now: Date): Date {
+	const { on, at } = wallClockOf(closesAt, timeZone);
+	for (let year = Number(on.slice(0, 4)) + 1; ; year++) {
+		const moment = momentIn(`${year}${on.slice(4)}`, at, timeZone) ?? momentIn(`${year}-02-28`, at, timeZone);
+		if (moment && moment > now) return moment;
+	}
+}
+
 /** What is added to UTC in a zone at a moment, in milliseconds. */
 function offsetAt(moment: number, timeZone: string): number {
 	const parts = new Intl.DateTimeFormat("en-US", {

@@ -12,9 +12,13 @@ import type { ClosingForm, SurveyDraft } from "./survey-draft.schema.ts";
 export type SurveyState = "draft" | "open" | "closed";
 export type Survey = Awaited<ReturnType<typeof listSurveys>>[number];
 
-/** The surveys that ask in at least one of the viewer's states, newest season first. */
-export async function listSurveys(trx: Trx, viewer: Associate) {
-	const rows = await selectSurveys(trx, viewer).orderBy("s.season", "desc").orderBy("s.created_at", "desc").execute();
+/** The surveys that ask in at least one of the viewer's states, newest season first; `archived` gives those put aside. */
+export async function listSurveys(trx: Trx, viewer: Associate, { archived = false } = {}) {
+	const rows = await selectSurveys(trx, viewer)
+		.where("s.archived_at", archived ? "is not" : "is", null)
+		.orderBy("s.season", "desc")
+		.orderBy("s.created_at", "desc")
+		.execute();
 	return rows.map((row) => toSurvey(row, viewer));
 }
 
@@ -52,6 +56,7 @@ function selectSurveys(trx: Trx, viewer: Associate) {
 			"s.closes_at",
 			"s.opened_at",
 			"s.closed_at",
+			"s.archived_at",
 			"s.created_by",
 			sql<Words>`v.definition -> 'title'`.as("form_title"),
 			sql<number>`(v.definition ->> 'minutes')::int`.as("minutes"),
@@ -98,6 +103,7 @@ function toSurvey(row: SurveyRow, viewer: Associate) {
 		closesAt: row.closes_at,
 		openedAt: row.opened_at,
 		closedAt: row.closed_at,
+		archivedAt: row.archived_at,
 		state,
 		inFrame: row.in_frame ?? 0,
 		answered: row.answered ?? 0,

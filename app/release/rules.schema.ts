@@ -1,19 +1,6 @@
 import { z } from "zod";
-import { problemMessage } from "#app/lib/parse-form.ts";
+import { numberField as number, optionalField as optional } from "#app/lib/number-field.ts";
 import type { ReleaseRules } from "./draft.ts";
-
-/** A number as typed, with a point or a comma before its decimals. */
-const number = (least: number, most: number, whole = false) =>
-	z.preprocess(
-		(sent) => (typeof sent === "string" ? Number(sent.trim().replace(",", ".") || "empty") : sent),
-		z
-			.number({ error: "not_a_number" })
-			.refine((value) => !whole || Number.isInteger(value), "not_whole")
-			.refine((value) => value >= least, problemMessage({ code: "too_small_limit", detail: { min: least } }))
-			.refine((value) => value <= most, problemMessage({ code: "too_large_limit", detail: { max: most } })),
-	);
-const optional = <T extends z.ZodType>(of: T) =>
-	z.preprocess((sent) => (typeof sent === "string" && sent.trim() === "" ? undefined : sent), of.optional());
 
 /** The settings as the page sends them: percents are typed as percents. */
 export const RulesForm = z

@@ -82,6 +82,8 @@ const open: Record<string, string> = {
 const guardedWrites: Record<string, string> = {
 	"directory.district": "named groups of counties: tests/database/districts.test.ts",
 	"directory.county": "every county, with its district: the same",
+	"collect.survey_brief":
+		"why a survey is asked: tests/database/survey-life.test.ts, read at the desks of its states alone",
 	"directory.district_change": "how a state's counties were grouped before: the same, read at its desks alone",
 	"collect.form": "which forms there are: tests/database/forms-editor.test.ts",
 	"collect.form_version": "questions, not answers: the same",

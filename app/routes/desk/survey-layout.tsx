@@ -24,6 +24,7 @@ export default function SurveyLayout({ loaderData, params }: Route.ComponentProp
 				label={t("survey.parts")}
 				items={[
 					{ to: href("/desk/surveys/:surveyId", params), label: t("survey.people"), end: true },
+					{ to: href("/desk/surveys/:surveyId/brief", params), label: t("survey.brief") },
 					{ to: href("/desk/surveys/:surveyId/mailing", params), label: t("survey.mailing") },
 					{ to: href("/desk/surveys/:surveyId/answered", params), label: t("answered:tabs.rates") },
 					{ to: href("/desk/surveys/:surveyId/calls", params), label: t("answered:tabs.calls") },

@@ -10,6 +10,7 @@ import type { Associate } from "#app/auth/viewer.ts";
 import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
 import { wallClockOf } from "#app/collect/survey-closing.ts";
 import { ClosingForm } from "#app/collect/survey-draft.schema.ts";
+import { archiveSurvey, copySurvey } from "#app/collect/survey-life.server.ts";
 import { closeSurvey, extendSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
 import { findSurvey, readClosing } from "#app/collect/surveys.server.ts";
 import { Confirm } from "#app/components/confirm.tsx";
@@ -36,6 +37,8 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 const Step = z.discriminatedUnion("step", [
 	z.object({ step: z.literal("open") }),
 	z.object({ step: z.literal("close") }),
+	z.object({ step: z.literal("copy") }),
+	z.object({ step: z.enum(["archive", "take_out"]) }),
 	z.object({ step: z.literal("invite") }),
 	z.object({ step: z.literal("remind"), wave: z.coerce.number().int().min(1) }),
 	ClosingForm.extend({ step: z.literal("extend") }),
@@ -56,6 +59,10 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 		return data({ refused: null, values, problems: [outcome.problem] }, { status: 400 });
 	if (typeof outcome === "string" && !settled[step.step].includes(outcome))
 		return data({ refused: outcome, values, problems: [] }, { status: 409 });
+	if (typeof outcome === "object" && "surveyId" in outcome) {
+		context.get(sessionContext).flash("toast", { key: "desk:survey.toast.copy" });
+		return redirect(href("/desk/surveys/:surveyId", { surveyId: outcome.surveyId }), 303);
+	}
 	const toast =
 		typeof outcome === "string"
 			? { key: `desk:survey.toast.${step.step}` }
@@ -70,6 +77,11 @@ async function takeStep(trx: Trx, viewer: Associate, surveyId: string, step: Ste
 			return openSurvey(trx, viewer, surveyId);
 		case "close":
 			return closeSurvey(trx, viewer, surveyId);
+		case "copy":
+			return copySurvey(trx, viewer, surveyId);
+		case "archive":
+		case "take_out":
+			return archiveSurvey(trx, viewer, surveyId, step.step === "archive");
 		case "invite":
 			return sendInvitations(trx, viewer, surveyId);
 		case "remind":
@@ -85,6 +97,9 @@ async function takeStep(trx: Trx, viewer: Associate, surveyId: string, step: Ste
 const settled: Record<Step["step"], string[]> = {
 	open: ["opened", "already_open"],
 	close: ["closed", "already_closed"],
+	copy: [],
+	archive: ["archived", "unchanged"],
+	take_out: ["taken_out", "unchanged"],
 	invite: [],
 	remind: [],
 	extend: ["extended", "unchanged"],
@@ -98,6 +113,7 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 		<>
 			<ErrorSummary problems={actionData?.problems} labels={closingLabels(t)} />
 			{actionData?.refused && <Notice tone="attention">{t(`survey.refused.${actionData.refused}`)}</Notice>}
+			{survey.archivedAt && <Notice tone="info">{t("survey.isArchived")}</Notice>}
 			{survey.state !== "draft" && (
 				<div className="mb-5">
 					<TallyCount count={survey.answered} of={survey.inFrame} label={t("survey.answersIn")} />
@@ -145,6 +161,16 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 				</Form>
 				{survey.state === "closed" && <p>{t("survey.closedNext")}</p>}
 			</Section>
+			{survey.state !== "draft" && (
+				<Section title={t("survey.afterwards")}>
+					<Form method="post" className="flex flex-wrap gap-4">
+						<StepButton step="copy" />
+						{survey.state === "closed" && survey.mayManage && (
+							<StepButton step={survey.archivedAt ? "take_out" : "archive"} />
+						)}
+					</Form>
+				</Section>
+			)}
 			{!survey.closedAt && survey.mayManage && (
 				<ClosingPart
 					closing={closing}
@@ -157,7 +183,7 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 	);
 }
 
-type StepButtonProps = { step: "open" | "close" | "invite" | "remind"; count?: number; children?: ReactNode };
+type StepButtonProps = { step: Exclude<Step["step"], "extend">; count?: number; children?: ReactNode };
 
 function StepButton({ step, count = 0, children }: StepButtonProps) {
 	const { t } = useTranslation("desk");

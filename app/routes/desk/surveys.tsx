@@ -11,9 +11,11 @@ import { StatusBadge } from "#app/components/status-badge.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 
-export async function loader({ context }: Route.LoaderArgs) {
+export async function loader({ context, request }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
-	return { surveys: await desk.transaction((trx) => listSurveys(trx, desk.viewer)) };
+	const archived = new URL(request.url).searchParams.get("show") === "archived";
+	const surveys = await desk.transaction((trx) => listSurveys(trx, desk.viewer, { archived }));
+	return { archived, surveys };
 }
 
 const tones = { draft: "neutral", open: "attention", closed: "good" } as const;
@@ -24,6 +26,13 @@ export default function Surveys({ loaderData }: Route.ComponentProps) {
 	const start = <ButtonLink to={href("/desk/surveys/new")}>{t("surveys.new")}</ButtonLink>;
 	return (
 		<Page title={t("surveys.title")} lead={t("surveys.lead")} actions={start}>
+			<p className="mb-4">
+				{loaderData.archived ? (
+					<Link to={href("/desk/surveys")}>{t("surveys.showCurrent")}</Link>
+				) : (
+					<Link to={`${href("/desk/surveys")}?show=archived`}>{t("surveys.showArchived")}</Link>
+				)}
+			</p>
 			<DataTable
 				caption={t("surveys.title")}
 				captionHidden
@@ -62,7 +71,13 @@ export default function Surveys({ loaderData }: Route.ComponentProps) {
 						cell: (survey) => format.moment(survey.closesAt, survey.timeZone),
 					},
 				]}
-				empty={<EmptyState title={t("surveys.emptyTitle")}>{t("surveys.emptyBody")}</EmptyState>}
+				empty={
+					loaderData.archived ? (
+						<EmptyState title={t("surveys.noneArchived")}>{t("surveys.noneArchivedBody")}</EmptyState>
+					) : (
+						<EmptyState title={t("surveys.emptyTitle")}>{t("surveys.emptyBody")}</EmptyState>
+					)
+				}
 			/>
 		</Page>
 	);
