@@ -1,4 +1,4 @@
-import { sql } from "kysely";
+import { type RawBuilder, sql } from "kysely";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import { findNewestSubmission, type Submission } from "#app/collect/answer-rows.server.ts";
 import { listRaisedChecks } from "#app/collect/checks.ts";
@@ -37,13 +37,24 @@ export async function checkAnswers({ surveyId, responseId }: { surveyId: string;
 const checkedDays = 120;
 
 /** Queues every survey that is out, or was lately, to be gone through. */
-export async function checkSurveys(): Promise<void> {
+export function checkSurveys(): Promise<void> {
+	return queueSurveys(sql<boolean>`true`);
+}
+
+/** What a worker does when it starts: answers that were there before anything looked for odd ones are gone through. */
+export function checkUnchecked(): Promise<void> {
+	return queueSurveys(sql<boolean>`not exists (select from collect.edit_finding f
+		join collect.response r using (response_id) where r.survey_id = s.survey_id)`);
+}
+
+async function queueSurveys(which: RawBuilder<boolean>): Promise<void> {
 	await scopedTransaction(network, async (trx) => {
 		const surveys = await trx
-			.selectFrom("collect.survey")
-			.select("survey_id as surveyId")
-			.where("opened_at", "is not", null)
-			.where(sql<boolean>`coalesce(closed_at, closes_at) > now() - make_interval(days => ${checkedDays})`)
+			.selectFrom("collect.survey as s")
+			.select("s.survey_id as surveyId")
+			.where("s.opened_at", "is not", null)
+			.where(sql<boolean>`coalesce(s.closed_at, s.closes_at) > now() - make_interval(days => ${checkedDays})`)
+			.where(which)
 			.execute();
 		for (const { surveyId } of surveys) await queueSurveyCheck(trx, surveyId);
 	});

@@ -24,6 +24,7 @@ function task<P>(schema: z.ZodType<P>, work: (payload: P, lastTry: boolean) => P
 
 /** What a worker does when it starts. */
 export { queueMissingFiles } from "./make-release-files.server.ts";
+export { checkUnchecked } from "./check-answers.server.ts";
 export { setReminderAlarms } from "./send-reminders.server.ts";
 
 export const tasks: Record<keyof JobPayloads, Task> = {

@@ -65,6 +65,12 @@ export function sizeOf({ measureKey, now, plants }: ToldQuantity): number | null
 }
 
 /**
+ * How far a ratio must lie from the usual one to be worth a call: a third more, or as much less. Where nearly all change
+ * alike, the bounds alone would ask large operations about a tenth.
+ */
+const leastDistance = 1 / 3;
+
+/**
  * Why one operation's quantity is odd beside its own last season and beside like operations; a slip of unit says more than
  * the other two, so it stands alone.
  * @param bushelLb pounds in the crop's bushel, null where it has none or the quantity is no mass.
@@ -78,7 +84,12 @@ export function oddnessOf(
 	if (slip) return [{ checkKind: "unit_slip", told: slip }];
 	const found: Pick<Odd, "checkKind" | "told">[] = [];
 	const flagged = neighbors.ratios.flagged.find(({ key }) => key === told.operationId);
-	if (flagged && told.last !== null && neighbors.ratios.centre !== null) {
+	if (
+		flagged &&
+		Math.abs(flagged.distance) >= leastDistance &&
+		told.last !== null &&
+		neighbors.ratios.centre !== null
+	) {
 		const { ratio } = flagged;
 		const { now, last } = told;
 		found.push({

@@ -74,7 +74,7 @@ function Grower({ row, surveyId, canChoose }: GrowerProps) {
 	return (
 		<span className="flex items-start gap-2">
 			{canChoose && (
-				<label className="no-print inline-flex min-h-11 min-w-11 items-center justify-center">
+				<label className="no-print relative inline-flex min-h-11 min-w-11 items-center justify-center">
 					<input type="checkbox" name="chosen" value={findingId} className="size-5 accent-damson" />
 					<span className="sr-only">{t("queue.choose", { name, kind: t(`kind.${row.checkKind}`) })}</span>
 				</label>
