@@ -76,7 +76,7 @@ function isImported(name: string, texts: string[]): boolean {
 	return texts.some((text) => named.test(text));
 }
 
-/** Who must be asked for in each area; routes of `public` and `api` are anybody's. */
+/** Who must be asked for in each area; routes of `public` and `api` are anybody's, those of `subscriber` a token's. */
 const guards: Record<string, string[]> = {
 	desk: ["requireAssociate"],
 	network: ["requireCoordinator"],
@@ -101,7 +101,7 @@ describe("routes", () => {
 	);
 
 	test("every loader and action of a guarded area first asks who is there", () => {
-		expect(new Set(routes.map(areaOf))).toEqual(new Set(["api", "public", ...Object.keys(guards)]));
+		expect(new Set(routes.map(areaOf))).toEqual(new Set(["api", "public", "subscriber", ...Object.keys(guards)]));
 		const guarded = routes.filter((file) => guards[areaOf(file)] && !(file in asksNobody));
 		expect(guarded.length).toBeGreaterThan(25);
 		expect(guarded.flatMap((file) => unguarded(file, sources, guards[areaOf(file)]!))).toEqual([]);
