@@ -4,6 +4,7 @@ import enCommon from "#locales/en/common.json" with { type: "json" };
 import enDataroom from "#locales/en/dataroom.json" with { type: "json" };
 import enDesk from "#locales/en/desk.json" with { type: "json" };
 import enDistricts from "#locales/en/districts.json" with { type: "json" };
+import enForms from "#locales/en/forms.json" with { type: "json" };
 import enGrower from "#locales/en/grower.json" with { type: "json" };
 import enGrowers from "#locales/en/growers.json" with { type: "json" };
 import enMail from "#locales/en/mail.json" with { type: "json" };
@@ -18,6 +19,7 @@ import esCommon from "#locales/es/common.json" with { type: "json" };
 import esDataroom from "#locales/es/dataroom.json" with { type: "json" };
 import esDesk from "#locales/es/desk.json" with { type: "json" };
 import esDistricts from "#locales/es/districts.json" with { type: "json" };
+import esForms from "#locales/es/forms.json" with { type: "json" };
 import esGrower from "#locales/es/grower.json" with { type: "json" };
 import esGrowers from "#locales/es/growers.json" with { type: "json" };
 import esMail from "#locales/es/mail.json" with { type: "json" };
@@ -36,6 +38,7 @@ export const resources = {
 		dataroom: enDataroom,
 		desk: enDesk,
 		districts: enDistricts,
+		forms: enForms,
 		grower: enGrower,
 		growers: enGrowers,
 		mail: enMail,
@@ -52,6 +55,7 @@ export const resources = {
 		dataroom: esDataroom,
 		desk: esDesk,
 		districts: esDistricts,
+		forms: esForms,
 		grower: esGrower,
 		growers: esGrowers,
 		mail: esMail,

@@ -10,6 +10,7 @@ const statusOf = {
 	role_needed: 403,
 	page_not_found: 404,
 	survey_not_found: 404,
+	form_not_found: 404,
 	operation_not_found: 404,
 	import_not_found: 404,
 	orchard_not_found: 404,

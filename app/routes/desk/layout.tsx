@@ -57,6 +57,7 @@ function DeskFrame({ children }: { children: ReactNode }) {
 					{ to: "/desk", label: t("nav.today"), end: true },
 					{ to: "/desk/growers", label: t("nav.growers") },
 					{ to: "/desk/surveys", label: t("nav.surveys") },
+					{ to: "/desk/forms", label: t("nav.forms") },
 					{ to: "/desk/reports", label: t("nav.reports") },
 					{ to: "/desk/districts", label: t("nav.districts") },
 				]}

@@ -3,7 +3,7 @@ import { data, Form, href, redirect } from "react-router";
 import type { Route } from "./+types/survey-new";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
-import { readyFormKeys, readyForms } from "#app/collect/forms/ready-forms.ts";
+import { listForms } from "#app/collect/editing/form-list.server.ts";
 import { SurveyDraft } from "#app/collect/survey-draft.schema.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import { Button } from "#app/components/button.tsx";
@@ -15,9 +15,12 @@ import { cropKeys } from "#app/directory/crops.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 
-export function loader({ context }: Route.LoaderArgs) {
+export async function loader({ context }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
-	const forms = readyFormKeys.map((key) => ({ key, title: readyForms[key].title }));
+	const listed = await desk.transaction((trx) => listForms(trx, desk.viewer));
+	const forms = listed
+		.filter(({ isReady, version }) => isReady || version !== null)
+		.map(({ formKey, title }) => ({ key: formKey, title }));
 	return { stateFips: desk.viewer.stateFips, season: new Date().getUTCFullYear(), forms };
 }
 

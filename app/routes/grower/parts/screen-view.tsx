@@ -17,9 +17,9 @@ import { CheckNotice } from "./check-notice.tsx";
 import { KeptWord, PhonePart, type PhonePage } from "./phone-part.tsx";
 import { photoAddress } from "./photo-address.ts";
 import { LateNotice } from "./late-notice.tsx";
-import { labelOf, QuestionField } from "./question-field.tsx";
+import { labelOf } from "./question-field.tsx";
+import { ScreenQuestions } from "./screen-questions.tsx";
 import { useStepTitle } from "#app/components/step-title.ts";
-import { ScreenUnknown } from "./unknown-boxes.tsx";
 
 type AnswerPlace = { surveyId: string; operationId: string };
 export type PostedScreen = {
@@ -51,7 +51,7 @@ export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
 	const elsewhere = posted?.elsewhere;
 	const title = useStepTitle()(step);
 	const help = step.screen.help && wordsIn(step.screen.help, i18n.language);
-	const shared = new Set(step.screen.sumToHundred ?? []);
+	const shares = step.screen.sumToHundred ?? [];
 	const labels = Object.fromEntries(
 		questions.flatMap((question) => [
 			[question.key, labelOf(question, i18n.language)],
@@ -82,19 +82,15 @@ export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
 				))}
 				{elsewhere && <ChangedElsewhere lines={elsewhere} />}
 				{!posted && <CheckNotice checks={shown.checks} busy={busy} />}
-				{questions.map((question) => (
-					<QuestionField
-						key={question.key}
-						question={question}
-						planting={step.planting}
-						values={values}
-						mayNotKnow={!shared.has(question.key)}
-						problems={problems}
-						filledFrom={posted ? undefined : shown.filledIn[question.key]}
-						photoHref={photoAddress(place)}
-					/>
-				))}
-				{shared.size > 0 && <ScreenUnknown values={values} />}
+				<ScreenQuestions
+					questions={questions}
+					planting={step.planting}
+					values={values}
+					problems={problems}
+					shares={shares}
+					filledIn={posted ? undefined : shown.filledIn}
+					photoHref={photoAddress(place)}
+				/>
 				<div className="mt-8 flex flex-wrap items-center gap-4">
 					<Button busy={busy} data-on="">
 						{t(elsewhere ? "elsewhere.mine" : "common:button.continue")}
