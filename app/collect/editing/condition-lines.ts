@@ -97,7 +97,7 @@ function readRight(line: Line, question: Question, standing: Standing, language:
 		return { value: option! };
 	}
 	const typed = line.value?.trim() ?? "";
-	if (line.other && typed !== "") return { field: "value", code: "condition_two" };
+	if (line.other && typed !== "") return { field: "value", code: "condition_both" };
 	if (line.other) return readOther(line, question, standing, language);
 	if (typed === "") return { field: "value", code: "condition_value" };
 	if (question.type === "date") {
@@ -116,7 +116,7 @@ function readOther(
 ): Comparison["to"] | Problem {
 	const other = offered.find(({ key }) => key === line.other);
 	const alike = other && (other.type === "date") === (question.type === "date") && !("options" in other);
-	if (!alike) return { field: "other", code: "condition_other" };
+	if (!alike) return { field: "other", code: "condition_unlike" };
 	const typed = line.times?.trim() ?? "";
 	if (typed === "") return { question: other.key };
 	const times = parseTypedNumber(typed, language);

@@ -21,11 +21,11 @@ export type DifferenceKind =
 	| (
 			| "now_sensitive"
 			| "now_plain"
-			| "question_other"
+			| "question_settings"
 			| "option_added"
 			| "option_removed"
 			| "option_text"
-			| "options_other"
+			| "options_order"
 	  )
 	| ("check_added" | "check_removed" | "check_changed" | "check_message")
 	| ("measure_added" | "measure_removed" | "measure_name" | "measure_changed");
@@ -130,7 +130,7 @@ function* oneQuestion(was: Question, now: Question): Generator<FormDifference> {
 		)
 	)
 		// one sentence for all three
-		yield { kind: "question_other", about };
+		yield { kind: "question_settings", about };
 	if ("options" in was && "options" in now) yield* optionDifferences(was.options, now.options, about);
 }
 
@@ -146,7 +146,7 @@ function* optionDifferences(was: Option[], now: Option[], about: Words): Generat
 	for (const { text } of was.filter(({ key }) => !kept.has(key)))
 		yield { kind: "option_removed", about, before: text.en || text.es };
 	const bones = (options: Option[]) => options.filter(({ key }) => old.has(key) && kept.has(key)).map(withoutWords);
-	if (!isSame(bones(was), bones(now))) yield { kind: "options_other", about };
+	if (!isSame(bones(was), bones(now))) yield { kind: "options_order", about };
 }
 
 type Fate = "added" | "removed" | "changed";
