@@ -106,10 +106,10 @@ type FindingsProps = { findings: Finding[]; wordsOf: ReturnType<typeof useFindin
 function Findings({ findings, wordsOf }: FindingsProps) {
 	return (
 		<ul className="list-none divide-y divide-rule">
-			{findings.map((finding, index) => {
+			{findings.map((finding) => {
 				const { place, words, to } = wordsOf(finding);
 				return (
-					<li key={index} className="py-2">
+					<li key={JSON.stringify(finding)} className="py-2">
 						<Link to={to}>{place}</Link>
 						<p>{words}</p>
 					</li>

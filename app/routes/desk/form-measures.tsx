@@ -114,9 +114,9 @@ type MeasureNameProps = {
 };
 
 /** Many forms of one page have each a field "label": the address of a problem leads to its own by the measure's key. */
-function MeasureName({ measureKey, value, problems = [] }: MeasureNameProps) {
+function MeasureName({ measureKey, value, problems }: MeasureNameProps) {
 	const { t } = useTranslation("forms");
-	const own = problems.map((problem) => ({ ...problem, field: problem.field.slice(measureKey.length + 1) }));
+	const own = problems?.map((problem) => ({ ...problem, field: problem.field.slice(measureKey.length + 1) }));
 	return (
 		<div id={`field-${measureKey}.label.en`} tabIndex={-1}>
 			<TextPair name="label" label={t("measures.name")} value={value} problems={own} />

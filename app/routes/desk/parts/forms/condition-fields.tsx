@@ -49,10 +49,10 @@ export function ConditionFields(props: ConditionFieldsProps) {
 					defaultValue={value.join}
 				/>
 			) : null}
-			{Array.from({ length: shown }, (_, index) => (
+			{Array.from({ length: shown }, (_, index) => `${name}.lines[${index}]`).map((line, index) => (
 				<LineFields
-					key={index}
-					name={`${name}.lines[${index}]`}
+					key={line}
+					name={line}
 					number={index + 1}
 					line={value.lines[index]}
 					offered={offered}

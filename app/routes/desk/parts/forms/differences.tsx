@@ -9,8 +9,8 @@ export function Differences({ differences }: { differences: FormDifference[] }) 
 	if (differences.length === 0) return <p className="text-quiet">{t("difference.none")}</p>;
 	return (
 		<ul className="max-w-prose list-disc space-y-1 pl-6">
-			{differences.map((difference, index) => (
-				<li key={index}>{words(difference)}</li>
+			{differences.map((difference) => (
+				<li key={JSON.stringify(difference)}>{words(difference)}</li>
 			))}
 		</ul>
 	);
