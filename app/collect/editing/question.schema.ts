@@ -86,9 +86,11 @@ export function readQuestionFields(
 		...textProblems("help", fields.help),
 	];
 	const base = {
-		...newQuestion(key, fields.type, fields.text),
-		...(isSaid(fields.label) && { label: fields.label }),
-		...(isSaid(fields.help) && { help: fields.help }),
+		// What a question has beside these fields, as ready forms' do, goes along in a copy.
+		...(before.type === fields.type ? before : newQuestion(key, fields.type, fields.text)),
+		text: fields.text,
+		label: isSaid(fields.label) ? fields.label : undefined,
+		help: isSaid(fields.help) ? fields.help : undefined,
 		required: fields.type === "photo" ? false : fields.required,
 		sensitive: fields.sensitive,
 		...readAsked(fields, before, draft, found.screen.perPlanting, language, problems),
@@ -109,8 +111,8 @@ function readAsked(
 	const standing = { offered: questionsBefore(draft, before.key), perPlanting, draft };
 	const read = readCondition(lines, standing, "condition", language);
 	problems.push(...read.problems);
-	if (!read.condition) return {};
-	return { condition: read.condition, ...(lines.unsure === "skip" && { whenUnsure: "skip" as const }) };
+	const skips = read.condition !== undefined && lines.unsure === "skip";
+	return { condition: read.condition, whenUnsure: skips ? "skip" : undefined };
 }
 
 /** What only some types have. */
@@ -127,10 +129,10 @@ function withOwnParts(
 			const limits = readLimits(fields.limits, language, problems);
 			const ranged = Object.keys(limits).length > 0 ? { ...question, limits } : { ...question, limits: undefined };
 			if (ranged.type === "percent") return ranged;
-			return { ...ranged, unitFamily: fields.unitFamily, ...(fields.prefill && { prefill: fields.prefill }) };
+			return { ...ranged, unitFamily: fields.unitFamily, prefill: fields.prefill };
 		}
 		case "date":
-			return fields.notBefore ? { ...question, notBefore: fields.notBefore } : question;
+			return { ...question, notBefore: fields.notBefore || undefined };
 		case "short_text":
 		case "long_text":
 			return { ...question, maxLength: readLength(fields.maxLength, problems) };

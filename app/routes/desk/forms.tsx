@@ -79,7 +79,7 @@ function FormTable({ caption, forms }: { caption: string; forms: ListedForm[] })
 							<ul className="list-none">
 								{surveys.map(({ surveyId, title, season }) => (
 									<li key={surveyId}>
-										<Link to={href("/desk/surveys/:surveyId", { surveyId })}>
+										<Link to={href("/desk/surveys/:surveyId", { surveyId })} className="inline-block py-1">
 											{t("desk:surveys.name", { title: said(title), season })}
 										</Link>
 									</li>

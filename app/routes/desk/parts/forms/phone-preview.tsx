@@ -23,7 +23,7 @@ export function PhonePreview({ screen }: PhonePreviewProps) {
 			<Phone screen={screen} language={own} />
 			<details className="mt-4">
 				<summary className="min-h-11 cursor-pointer py-2 font-bold text-damson">
-					{t("preview.other", { language: t(`common:language.${other}`) })}
+					{t("preview.in", { language: t(`common:language.${other}`) })}
 				</summary>
 				<Phone screen={screen} language={other} />
 			</details>
@@ -37,7 +37,11 @@ function Phone({ screen, language }: PhonePreviewProps & { language: Language })
 	const [planting] = screen.perPlanting ? samplePlantings([crops[0]!]) : [];
 	const title = useStepTitle()({ screen: shown, planting: planting ?? null });
 	return (
-		<div
+		<section
+			aria-label={t("preview.in", { language: t(`common:language.${language}`) })}
+			// Scrolled by keyboard only while in focus.
+			// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex
+			tabIndex={0}
 			className="max-h-[80vh] max-w-[375px] overflow-y-auto rounded-2xl border-4 border-line bg-paper p-4 text-lg"
 			lang={language}
 		>
@@ -56,7 +60,7 @@ function Phone({ screen, language }: PhonePreviewProps & { language: Language })
 					/>
 				</div>
 			</div>
-		</div>
+		</section>
 	);
 }
 
