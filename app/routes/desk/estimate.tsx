@@ -10,6 +10,7 @@ import { wordsIn } from "#app/i18n/language.ts";
 import { FigureFacts, FigureFormula } from "./parts/estimates/figure-facts.tsx";
 import { requireFigureOrigin } from "./parts/estimates/figure-origin.server.ts";
 import { FigureResponse } from "./parts/estimates/figure-response.tsx";
+import { FigureSeasonsPart } from "./parts/estimates/figure-seasons.tsx";
 import { FigureStrata } from "./parts/estimates/figure-strata.tsx";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
@@ -55,6 +56,7 @@ export default function Estimate({ loaderData, params }: Route.ComponentProps) {
 				</Notice>
 				<FigureFacts told={loaderData} />
 			</Section>
+			<FigureSeasonsPart seasons={loaderData.seasons} measure={measure} place={params} />
 			<FigureFormula told={loaderData} />
 			<FigureStrata told={loaderData} />
 			<FigureResponse told={loaderData} />

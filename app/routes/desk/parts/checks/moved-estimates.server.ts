@@ -52,7 +52,8 @@ export async function listMovedEstimates(
 	});
 	return measures.flatMap((measure) =>
 		inputs.areas
-			.filter(({ key }) => path.includes(key))
+			// The states that the desk holds, together, are no area that anybody reads of.
+			.filter(({ key, kind }) => path.includes(key) && kind !== "region")
 			.map(({ key, kind, name, stateFips }) => ({
 				area: { key, kind, name, stateFips },
 				measure: { ...measureWords(measure), season: inputs.survey.season },

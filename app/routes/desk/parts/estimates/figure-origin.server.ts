@@ -6,6 +6,7 @@ import { frameResponse } from "#app/estimate/response-rate.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { measuresOf, readDraftInputs } from "./draft-estimates.server.ts";
 import { originOf } from "./figure-origin.ts";
+import { readFigureSeasons } from "./figure-seasons.server.ts";
 
 export type FigurePlace = { surveyId: string; areaKey: string; cropKey: string; measureKey: string };
 export type ToldFigure = NonNullable<Awaited<ReturnType<typeof findFigureOrigin>>>;
@@ -27,6 +28,7 @@ export async function findFigureOrigin(trx: Trx, viewer: Associate, place: Figur
 		cropKey,
 		measure: { key, label, description, kind, unit, decimals, season: inputs.survey.season },
 		origin: originOf(inputs, { areaKey, cropKey, measure }),
+		seasons: await readFigureSeasons(trx, viewer, inputs, { areaKey, cropKey, measure }),
 		dispositions,
 		response: frameResponse(dispositions),
 	};
