@@ -34,7 +34,7 @@ export function lookOf(cell: Pick<Cell, "status" | "value" | "steadiness">): Cel
 	return cell.value === null || cell.steadiness === "rough" ? "rough" : "number";
 }
 
-const lookOrder: CellLook[] = ["number", "rough", "no_growers", "no_figure", "withheld"];
+export const lookOrder: CellLook[] = ["number", "rough", "no_growers", "no_figure", "withheld"];
 export type CellOrder = { key: "area" | "value"; direction: "asc" | "desc" };
 
 /**

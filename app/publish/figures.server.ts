@@ -16,18 +16,22 @@ export type MapFigures = {
 	areaOfCounty: Record<string, string | null>;
 };
 
-/** Everything one map and its table are made of, or undefined when the release holds no such figures. */
+/**
+ * Everything one map and its table are made of, or undefined when the release holds no such figures.
+ * @param beside the release of the map beside it, whose values share the classes.
+ */
 export async function findMapFigures(
 	number: number,
 	measureKey: string,
 	cropKey: string,
 	kind: AreaKind,
+	beside?: number,
 ): Promise<MapFigures | undefined> {
-	const release = await findRelease(number);
-	if (!release) return undefined;
-	const measures = await listMeasures(release.releaseId);
-	const measure = measures.find(({ key }) => key === measureKey);
-	return measure && mapFiguresOf(release, measure, cropKey, kind);
+	const [release, other] = await Promise.all([findRelease(number), beside ? findRelease(beside) : undefined]);
+	const measure = release && (await findMeasure(release, measureKey));
+	if (!release || !measure) return undefined;
+	if (beside === undefined) return mapFiguresOf(release, measure, cropKey, kind);
+	return other && (await pairFiguresOf(release, measure, other, cropKey, kind))?.[0];
 }
 
 export async function mapFiguresOf(
@@ -36,27 +40,67 @@ export async function mapFiguresOf(
 	cropKey: string,
 	kind: AreaKind,
 ): Promise<MapFigures | undefined> {
+	const read = await readFigures(release, measure, cropKey, kind);
+	return read && drawnWith(read, classesOfCells(read.cells, measure.decimals));
+}
+
+/**
+ * Two releases' figures of one measure in the same classes, so that one colour is one range on both maps; undefined where
+ * either holds none, or where they are told in other units or were withdrawn.
+ */
+export async function pairFiguresOf(
+	release: Release,
+	measure: ReleaseMeasure,
+	other: Release,
+	cropKey: string,
+	kind: AreaKind,
+): Promise<[MapFigures, MapFigures] | undefined> {
+	if (release.withdrawn || other.withdrawn || release.number === other.number) return undefined;
+	const otherMeasure = await findMeasure(other, measure.key);
+	if (otherMeasure?.unit !== measure.unit || otherMeasure.decimals !== measure.decimals) return undefined;
+	const [read, otherRead] = await Promise.all([
+		readFigures(release, measure, cropKey, kind),
+		readFigures(other, otherMeasure, cropKey, kind),
+	]);
+	if (!read || !otherRead) return undefined;
+	const classes = classesOfCells([...read.cells, ...otherRead.cells], measure.decimals);
+	return [drawnWith(read, classes), drawnWith(otherRead, classes)];
+}
+
+async function findMeasure(release: Release, measureKey: string): Promise<ReleaseMeasure | undefined> {
+	return (await listMeasures(release.releaseId)).find(({ key }) => key === measureKey);
+}
+
+type Read = Omit<MapFigures, "cells" | "classes"> & { cells: Cell[] };
+
+async function readFigures(
+	release: Release,
+	measure: ReleaseMeasure,
+	cropKey: string,
+	kind: AreaKind,
+): Promise<Read | undefined> {
 	const [counties, cells] = await Promise.all([
 		listAreas(release.releaseId, "county"),
 		listCells(release.releaseId, measure.key, cropKey, kind),
 	]);
 	if (cells.length === 0) return undefined;
-	const classes = classesOfCells(cells, measure.decimals);
 	const drawnAreas = new Set(cells.map((cell) => cell.areaKey));
 	const areaOfCounty = counties.map((county) => {
 		const areaKey = kind === "district" ? county.parentKey : county.key;
 		// A county without a district hangs on its state, which is not drawn.
 		return [county.key, kind === "county" || (areaKey && drawnAreas.has(areaKey)) ? areaKey : null];
 	});
-	return {
-		release,
-		measure,
-		cropKey,
-		kind,
-		classes,
-		cells: cells.map((cell) => drawn(cell, classes, measure.decimals)),
-		areaOfCounty: Object.fromEntries(areaOfCounty),
-	};
+	return { release, measure, cropKey, kind, cells, areaOfCounty: Object.fromEntries(areaOfCounty) };
+}
+
+/** In classes that may be those of more figures than these; each class counts only its own areas here. */
+function drawnWith(read: Read, classes: MapClass[]): MapFigures {
+	const cells = read.cells.map((cell) => drawn(cell, classes, read.measure.decimals));
+	const counted = classes.map((range, index) => ({
+		...range,
+		count: cells.filter(({ classIndex }) => classIndex === index).length,
+	}));
+	return { ...read, cells, classes: counted };
 }
 
 function drawn(cell: Cell, classes: MapClass[], decimals: number): MapCell {

@@ -1,16 +1,19 @@
 import { z } from "zod";
 
+const releaseNumber = z.coerce.number().int().positive().max(2_147_483_647).optional().catch(undefined);
 const text = z.string().trim().max(100).optional().catch(undefined);
 
 /** What the map's address may say. A word that means nothing is as if it were absent; what is shown is said on the page. */
 export const MapQuery = z.object({
-	release: z.coerce.number().int().positive().max(2_147_483_647).optional().catch(undefined),
+	release: releaseNumber,
+	/** The release drawn beside it. */
+	beside: releaseNumber,
 	measure: text,
 	crop: text,
 	kind: z.enum(["county", "district"]).catch("county"),
 	area: text,
 	q: z.string().trim().max(200).catch(""),
-	sort: z.enum(["area", "value"]).catch("area"),
+	sort: z.enum(["area", "value", "earlier", "change"]).catch("area"),
 	direction: z.enum(["asc", "desc"]).catch("asc"),
 });
 export type MapQuery = z.infer<typeof MapQuery>;

@@ -6,9 +6,13 @@ export function tableRows<C extends Cell>(
 	{ q, sort, direction }: { q: string; sort: "area" | "value"; direction: "asc" | "desc" },
 	compare: (a: string, b: string) => number,
 ): C[] {
+	return orderCells(namedLike(cells, q), { key: sort, direction }, compare);
+}
+
+/** Those whose area's name holds the searched text. */
+export function namedLike<A extends { areaName: string }>(areas: A[], q: string): A[] {
 	const wanted = plain(q);
-	const found = cells.filter((cell) => plain(cell.areaName).includes(wanted));
-	return orderCells(found, { key: sort, direction }, compare);
+	return areas.filter(({ areaName }) => plain(areaName).includes(wanted));
 }
 
 /** Without accents and capitals, so that a search on a plain keyboard finds "Peña". */

@@ -8,6 +8,7 @@ import type { Direction } from "./live-map.client.ts";
 import { mapKey, ZoomButtons } from "./map-keys.tsx";
 import { StaticMap, type StaticMapProps } from "./static-map.tsx";
 import { useLiveMap } from "./use-live-map.ts";
+import type { ViewLink } from "./view-link.ts";
 
 type CountyMapProps = Omit<StaticMapProps, "selected"> & {
 	countiesAddress: string;
@@ -19,11 +20,16 @@ type CountyMapProps = Omit<StaticMapProps, "selected"> & {
 	pointed: string | null;
 	nameOf: (areaKey: string) => string;
 	onChoose: (areaKey: string | null) => void;
+	/** The area under the pointer, for another map that marks it too. */
+	onPoint?: (areaKey: string | null) => void;
+	/** What holds this map and another on the same view. */
+	link?: ViewLink;
 };
 
 /** The map of a page: drawn by the server at first, live once it can be; by pointer, finger and keyboard. */
 export function CountyMap(props: CountyMapProps) {
-	const { countiesAddress, figuresAddress, measure, chosen, pointed, nameOf, onChoose, ...drawn } = props;
+	const { countiesAddress, figuresAddress, measure, chosen, pointed, nameOf, onChoose, onPoint, link, ...drawn } =
+		props;
 	const { t } = useTranslation("public");
 	const words = useCellWords(measure);
 	const hintId = useId();
@@ -39,10 +45,12 @@ export function CountyMap(props: CountyMapProps) {
 			onPoint: (fips, at) => {
 				const areaKey = areaOf(fips);
 				setHover(areaKey && at ? { areaKey, ...at } : null);
+				onPoint?.(areaKey);
 			},
 			onChoose: (fips) => onChoose(areaOf(fips)),
 		},
 	);
+	useEffect(() => (live && link ? link.join(live) : undefined), [live, link]);
 	const marked = hover?.areaKey ?? pointed ?? chosen;
 	useEffect(() => {
 		if (state === "ready") live?.mark(marked);

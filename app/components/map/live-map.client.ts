@@ -3,6 +3,7 @@ import { colorsOfPage, dotImage, hatchImage, type MapColors } from "./map-colors
 import type { FiguresAnswer, GeometryAnswer, Hue } from "./map-data.ts";
 import { boundsOf, middlesOf, nextCounty, ringsOf } from "./map-places.ts";
 import { paintedBy } from "./map-style.ts";
+import type { MapView, Viewer } from "./view-link.ts";
 import { openMap, type OpenMapOptions } from "./open-map.client.ts";
 import { outerEdge } from "./outer-edge.ts";
 
@@ -10,7 +11,7 @@ export type LiveMapOptions = OpenMapOptions & {
 	onPoint: (fips: string | null, at: { x: number; y: number } | null) => void;
 	onChoose: (fips: string) => void;
 };
-export type LiveMap = {
+export type LiveMap = Viewer & {
 	/** Resolves when the figures are painted whole: until then a slow machine shows half a map. */
 	show: (figures: FiguresAnswer, hue: Hue) => Promise<void>;
 	/** Outlines every county drawn from an area; null for none. */
@@ -50,6 +51,7 @@ function controls(map: LibraryMap, geometry: GeometryAnswer, bounds: [number, nu
 	const dark = matchMedia("(prefers-color-scheme: dark)");
 	dark.addEventListener("change", paint);
 	return {
+		...viewer(map),
 		show(figures, hue) {
 			shown = { figures, hue };
 			paint();
@@ -73,6 +75,26 @@ function controls(map: LibraryMap, geometry: GeometryAnswer, bounds: [number, nu
 		remove() {
 			dark.removeEventListener("change", paint);
 			map.remove();
+		},
+	};
+}
+
+/** Tells where the reader has moved the map, and goes where another was moved without telling it again. */
+function viewer(map: LibraryMap): Viewer {
+	let following = false;
+	return {
+		onMoved(tell) {
+			const moved = () => {
+				const { lng, lat } = map.getCenter();
+				if (!following) tell({ longitude: lng, latitude: lat, zoom: map.getZoom() });
+			};
+			map.on("move", moved);
+			return () => void map.off("move", moved);
+		},
+		follow({ longitude, latitude, zoom }: MapView) {
+			following = true;
+			map.jumpTo({ center: [longitude, latitude], zoom });
+			following = false;
 		},
 	};
 }

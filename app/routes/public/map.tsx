@@ -13,13 +13,16 @@ import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { formatterFor } from "#app/lib/format.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { mapFiguresOf } from "#app/publish/figures.server.ts";
+import { type MapFigures, mapFiguresOf, pairFiguresOf } from "#app/publish/figures.server.ts";
 import { countiesAddress } from "#app/publish/geometry.server.ts";
-import { choose, readMapQuery } from "#app/publish/map-choice.ts";
+import { choose, type MapQuery, readMapQuery } from "#app/publish/map-choice.ts";
 import { pictureOf } from "#app/publish/picture.server.ts";
 import { findRelease, listCoveredStates, listCrops, listMeasures, listReleases } from "#app/publish/releases.server.ts";
-import { tableRows } from "#app/publish/table-rows.ts";
+import type { Release, ReleaseMeasure } from "#app/publish/release.ts";
+import { differencesOf, orderSeasonRows, pairRows } from "#app/publish/season-pair.ts";
+import { namedLike, tableRows } from "#app/publish/table-rows.ts";
 import { MapForm } from "./parts/map-form.tsx";
+import { MapPair, type Pair } from "./parts/map-pair.tsx";
 import { MapTable } from "./parts/map-table.tsx";
 import { ReleaseNotice } from "./parts/release-state.tsx";
 import { useChosenArea } from "./parts/use-chosen-area.ts";
@@ -48,6 +51,7 @@ export async function loader({ request, context }: Route.LoaderArgs) {
 	const { compare } = formatterFor(getLanguage(context), getT(context, "common"));
 	const [picture, outlines] = [pictureOf(states), countiesAddress(states)];
 	if (!figures || !picture || !outlines) return { map: null };
+	const pair = await pairOf(release, measure, figures.cropKey, query, compare);
 	const offered = release.replacedBy ? [release, ...releases] : releases;
 	const seasons = offered.map(({ number, season, title }) => ({ number, season, title }));
 	return {
@@ -58,12 +62,38 @@ export async function loader({ request, context }: Route.LoaderArgs) {
 			crops,
 			releases: seasons,
 			changed: measureChoice.changed || cropChoice.changed,
+			pair,
+			beside: pair && (query.beside ?? null),
+			besideMissing: Boolean(query.beside) && !pair && query.beside !== release.number,
 			picture,
 			outlines,
-			rows: tableRows(figures.cells, query, compare),
+			rows: pair ? [] : tableRows(figures.cells, oneMapOrder(query), compare),
 		},
 	};
 }
+
+/** The two columns of a pair are nothing to sort by where there is one map. */
+const oneMapOrder = ({ q, sort, direction }: MapQuery) =>
+	({ q, sort: sort === "value" ? "value" : "area", direction }) as const;
+
+/** The chosen release beside the other that is asked for, the earlier season first; null where they cannot stand so. */
+async function pairOf(
+	release: Release,
+	measure: ReleaseMeasure,
+	cropKey: string,
+	query: MapQuery,
+	compare: (a: string, b: string) => number,
+): Promise<Pair | null> {
+	const other = query.beside ? await findRelease(query.beside) : undefined;
+	const figures = other && (await pairFiguresOf(release, measure, other, cropKey, query.kind));
+	if (!figures) return null;
+	const [earlier, later] = figures.toSorted(bySeason) as [MapFigures, MapFigures];
+	const rows = namedLike(pairRows(earlier.cells, later.cells, measure.decimals), query.q);
+	const order = { key: query.sort, direction: query.direction };
+	return { earlier, later, rows: orderSeasonRows(rows, order, compare), differences: differencesOf(earlier, later) };
+}
+
+const bySeason = ({ release: a }: MapFigures, { release: b }: MapFigures) => a.season - b.season || a.number - b.number;
 
 function withoutArea(url: URL): string {
 	const search = new URLSearchParams(url.search);
@@ -86,32 +116,56 @@ export default function MapPage({ loaderData: { map } }: Route.ComponentProps) {
 			</Page>
 		);
 	}
-	return <Map key={`${map.release.number} ${map.kind}`} map={map} />;
+	return <Map key={`${map.release.number} ${map.kind} ${map.beside}`} map={map} />;
 }
 
 type MapData = NonNullable<Route.ComponentProps["loaderData"]["map"]>;
 
 function Map({ map }: { map: MapData }) {
 	const { t, i18n } = useTranslation("public");
-	const format = useFormat();
-	const areaName = useAreaName();
-	const [pointed, setPointed] = useState<string | null>(null);
-	const { release, measure, cropKey, kind, cells, areaOfCounty } = map;
+	const { release, measure, cropKey, pair } = map;
 	const title = t("map.shown", {
 		measure: wordsIn(measure.label, i18n.language),
 		crop: t(`common:crop.${cropKey}`),
-		season: release.season,
+		season: pair
+			? t("map.two.seasons", { earlier: pair.earlier.release.season, later: pair.later.release.season })
+			: release.season,
 	});
 	const [chosen, chooseArea] = useChosenArea();
-	const byArea = Object.fromEntries(cells.map((cell) => [cell.areaKey, cell]));
-	const drawn = { cells, classes: map.classes, areaOfCounty, hue: measure.hue, picture: map.picture };
-	const figuresAddress = `${href("/map/figures/:release/:measure/:crop", { release: `${release.number}`, measure: measure.key, crop: cropKey })}?kind=${kind}`;
-	const withoutCell = Object.values(areaOfCounty).filter((areaKey) => !areaKey || !byArea[areaKey]).length;
 	return (
 		<Page title={title} lead={wordsIn(measure.description, i18n.language)}>
 			<ReleaseNotice release={release} />
 			<MapForm map={map} chosen={chosen} onChoose={chooseArea} />
 			{map.changed && <Notice tone="info">{t("map.changed", { shown: title })}</Notice>}
+			{map.besideMissing && <Notice tone="info">{t("map.two.missing", { shown: title })}</Notice>}
+			{pair ? (
+				<MapPair pair={pair} shown={map} title={title} chosen={chosen} onChoose={chooseArea} />
+			) : (
+				<OneMap map={map} title={title} chosen={chosen} onChoose={chooseArea} />
+			)}
+		</Page>
+	);
+}
+
+type OneMapProps = {
+	map: MapData;
+	title: string;
+	chosen: string | null;
+	onChoose: (areaKey: string | null) => void;
+};
+
+function OneMap({ map, title, chosen, onChoose }: OneMapProps) {
+	const { t } = useTranslation("public");
+	const format = useFormat();
+	const areaName = useAreaName();
+	const [pointed, setPointed] = useState<string | null>(null);
+	const { release, measure, cropKey, kind, cells, areaOfCounty } = map;
+	const byArea = Object.fromEntries(cells.map((cell) => [cell.areaKey, cell]));
+	const drawn = { cells, classes: map.classes, areaOfCounty, hue: measure.hue, picture: map.picture };
+	const figuresAddress = `${href("/map/figures/:release/:measure/:crop", { release: `${release.number}`, measure: measure.key, crop: cropKey })}?kind=${kind}`;
+	const withoutCell = Object.values(areaOfCounty).filter((areaKey) => !areaKey || !byArea[areaKey]).length;
+	return (
+		<>
 			<div className="grid grid-cols-[minmax(0,1fr)] gap-6 lg:grid-cols-[minmax(0,1fr)_17rem]">
 				<CountyMap
 					{...drawn}
@@ -122,7 +176,7 @@ function Map({ map }: { map: MapData }) {
 					chosen={chosen && byArea[chosen] ? chosen : null}
 					pointed={pointed}
 					nameOf={(areaKey) => (byArea[areaKey] ? areaName(byArea[areaKey]) : t("area.unnamed"))}
-					onChoose={chooseArea}
+					onChoose={onChoose}
 				/>
 				<div>
 					<Legend
@@ -140,7 +194,7 @@ function Map({ map }: { map: MapData }) {
 					</p>
 				</div>
 			</div>
-			<MapTable map={map} title={title} onPoint={setPointed} onChoose={chooseArea} />
-		</Page>
+			<MapTable map={map} title={title} onPoint={setPointed} onChoose={onChoose} />
+		</>
 	);
 }

@@ -10,6 +10,8 @@ import type { Words } from "#app/lib/words.ts";
 
 export type MapFormData = {
 	release: { number: number };
+	/** The release drawn beside it. */
+	beside: number | null;
 	measure: { key: string };
 	cropKey: string;
 	kind: string;
@@ -24,7 +26,7 @@ type MapFormProps = { map: MapFormData; chosen: string | null; onChoose: (areaKe
 export function MapForm({ map, chosen, onChoose }: MapFormProps) {
 	const { t, i18n } = useTranslation("public");
 	const areaName = useAreaName();
-	const key = `${map.release.number} ${map.measure.key} ${map.cropKey} ${map.kind}`;
+	const key = `${map.release.number} ${map.measure.key} ${map.cropKey} ${map.kind} ${map.beside}`;
 	const measures = map.measures.map(({ key: value, label }) => ({ value, label: wordsIn(label, i18n.language) }));
 	const releases = map.releases.map(({ number, season, title }) => ({
 		value: `${number}`,
@@ -49,6 +51,17 @@ export function MapForm({ map, chosen, onChoose }: MapFormProps) {
 				options={map.crops.map((crop) => ({ value: crop, label: t(`common:crop.${crop}`) }))}
 			/>
 			<Choice name="release" label={t("map.form.season")} value={`${map.release.number}`} options={releases} />
+			{map.releases.length > 1 && (
+				<Choice
+					name="beside"
+					label={t("map.form.beside")}
+					value={map.beside === null ? "" : `${map.beside}`}
+					options={[
+						{ value: "", label: t("map.form.noSeason") },
+						...releases.filter(({ value }) => value !== `${map.release.number}`),
+					]}
+				/>
+			)}
 			<Choice
 				name="kind"
 				label={t("map.form.kind")}

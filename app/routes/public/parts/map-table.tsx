@@ -57,7 +57,7 @@ export const MapTable = memo(function MapTable({
 });
 
 /** A plain press of a row's link chooses without a navigation; with a key held it opens the view's own address. */
-function chosenHere(event: MouseEvent): boolean {
+export function chosenHere(event: MouseEvent): boolean {
 	if (event.ctrlKey || event.metaKey || event.shiftKey || event.altKey) return false;
 	event.preventDefault();
 	return true;

@@ -1,0 +1,163 @@
+import { useState } from "react";
+import { useTranslation } from "react-i18next";
+import { href } from "react-router";
+import { useAreaName } from "#app/components/map/area-name.ts";
+import { CountyMap } from "#app/components/map/county-map.tsx";
+import { Legend } from "#app/components/map/legend.tsx";
+import type { DrawnPicture } from "#app/components/map/static-map.tsx";
+import { linkViews, type ViewLink } from "#app/components/map/view-link.ts";
+import { Notice } from "#app/components/notice.tsx";
+import { wordsIn } from "#app/i18n/language.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
+import { daysInYear } from "#app/lib/day-of-year.ts";
+import type { MapFigures } from "#app/publish/figures.server.ts";
+import type { SeasonDifference, SeasonRow } from "#app/publish/season-pair.ts";
+import type { MapQuery } from "#app/publish/map-choice.ts";
+import { PairTable } from "./map-pair-table.tsx";
+
+export type Pair = {
+	earlier: MapFigures;
+	later: MapFigures;
+	rows: SeasonRow[];
+	differences: SeasonDifference[];
+};
+type Shown = { picture: DrawnPicture; outlines: string; query: MapQuery };
+type Choosing = { chosen: string | null; onChoose: (areaKey: string | null) => void };
+
+/** "2024 (release 3)": two editions of one season keep apart. */
+export function useSeasonName() {
+	const { t } = useTranslation("public");
+	return ({ release: { season, number } }: Pick<MapFigures, "release">) => t("map.two.season", { season, number });
+}
+
+/** Two seasons side by side: one legend, one table, and maps that move together. */
+export function MapPair({
+	pair,
+	shown,
+	title,
+	chosen,
+	onChoose,
+}: { pair: Pair; shown: Shown; title: string } & Choosing) {
+	const { t } = useTranslation("public");
+	const format = useFormat();
+	const seasonName = useSeasonName();
+	const [pointed, setPointed] = useState<string | null>(null);
+	const [link] = useState(linkViews);
+	const { earlier, later } = pair;
+	return (
+		<>
+			<DifferenceNotice pair={pair} />
+			<div className="grid grid-cols-[minmax(0,1fr)] gap-6 lg:grid-cols-2">
+				<SeasonMap
+					figures={earlier}
+					other={later}
+					{...{ shown, chosen, onChoose, pointed, link }}
+					onPoint={setPointed}
+				/>
+				<SeasonMap
+					figures={later}
+					other={earlier}
+					{...{ shown, chosen, onChoose, pointed, link }}
+					onPoint={setPointed}
+				/>
+			</div>
+			<div className="mt-6 grid gap-x-10 gap-y-4 sm:grid-cols-2">
+				<Legend
+					title={t("map.two.legend", { title })}
+					cells={earlier.cells}
+					classes={earlier.classes}
+					notAsked={withoutCell(earlier)}
+					hue={later.measure.hue}
+					measure={later.measure}
+					beside={{
+						cells: later.cells,
+						notAsked: withoutCell(later),
+						names: [columnName(earlier, later), columnName(later, earlier)],
+					}}
+				/>
+				<div className="grid gap-4 self-start text-sm text-quiet">
+					<p>{t(`map.counted.${later.kind}`)}</p>
+					<p>{t("map.withheldWhy")}</p>
+					{[earlier, later].map((of) => (
+						<p key={of.release.number}>
+							{seasonName(of)}:{" "}
+							{t("map.source", { number: of.release.number, date: format.dayOf(of.release.publishedAt) })}
+						</p>
+					))}
+				</div>
+			</div>
+			<PairTable pair={pair} query={shown.query} title={title} onPoint={setPointed} onChoose={onChoose} />
+		</>
+	);
+}
+
+const columnName = (of: MapFigures, other: MapFigures) =>
+	of.release.season === other.release.season ? `${of.release.season} (${of.release.number})` : `${of.release.season}`;
+
+/** Counties of the release that its survey has no cell for; in the map of districts they are not counted. */
+function withoutCell({ areaOfCounty, cells, kind }: MapFigures): number {
+	const known = new Set(cells.map(({ areaKey }) => areaKey));
+	return kind === "county" ? Object.values(areaOfCounty).filter((key) => !key || !known.has(key)).length : 0;
+}
+
+type SeasonMapProps = Choosing & {
+	figures: MapFigures;
+	other: MapFigures;
+	shown: Shown;
+	pointed: string | null;
+	onPoint: (areaKey: string | null) => void;
+	link: ViewLink;
+};
+
+function SeasonMap({ figures, other, shown, chosen, onChoose, pointed, onPoint, link }: SeasonMapProps) {
+	const { t, i18n } = useTranslation("public");
+	const areaName = useAreaName();
+	const season = useSeasonName()(figures);
+	const { release, measure, cropKey, kind, cells, classes, areaOfCounty } = figures;
+	const title = t("map.shown", {
+		measure: wordsIn(measure.label, i18n.language),
+		crop: t(`common:crop.${cropKey}`),
+		season,
+	});
+	const address = href("/map/figures/:release/:measure/:crop", {
+		release: `${release.number}`,
+		measure: measure.key,
+		crop: cropKey,
+	});
+	const nameOf = (areaKey: string) => {
+		const cell = [...cells, ...other.cells].find((of) => of.areaKey === areaKey);
+		return t("map.two.area", { name: cell ? areaName(cell) : t("area.unnamed"), season: release.season });
+	};
+	const known = [...cells, ...other.cells].some(({ areaKey }) => areaKey === chosen);
+	return (
+		<section aria-label={title}>
+			<h2 className="mb-2 text-lg font-bold">{season}</h2>
+			<CountyMap
+				{...{ cells, classes, areaOfCounty, nameOf, measure, pointed, onPoint, onChoose, link }}
+				hue={measure.hue}
+				picture={shown.picture}
+				label={t("map.alternative", { title })}
+				countiesAddress={shown.outlines}
+				figuresAddress={`${address}?kind=${kind}&beside=${other.release.number}`}
+				chosen={known ? chosen : null}
+			/>
+		</section>
+	);
+}
+
+function DifferenceNotice({ pair: { differences, earlier, later } }: { pair: Pair }) {
+	const { t } = useTranslation("public");
+	const leap = daysInYear(earlier.release.season) !== daysInYear(later.release.season);
+	const dates = later.measure.unit === "day" && leap;
+	if (differences.length === 0 && !dates) return null;
+	return (
+		<Notice tone="attention" title={t("map.two.differ.title")}>
+			<ul className="list-disc pl-5">
+				{differences.map((key) => (
+					<li key={key}>{t(`map.two.differ.${key}`)}</li>
+				))}
+				{dates && <li>{t("map.two.differ.dates", { season: later.release.season })}</li>}
+			</ul>
+		</Notice>
+	);
+}
