@@ -42,8 +42,8 @@ describe("a contact as typed", () => {
 
 	test("needs a day where it asks to be rung again, and where it names a time", () => {
 		expect(problemsOf({})).toBeUndefined();
-		expect(problemsOf({ outcome: "call_back" })).toEqual([["nextOn", "empty"]]);
-		expect(problemsOf({ nextTime: "14:30" })).toEqual([["nextOn", "empty"]]);
+		expect(problemsOf({ outcome: "call_back" })).toEqual([["nextOn", "next_day_needed"]]);
+		expect(problemsOf({ nextTime: "14:30" })).toEqual([["nextOn", "next_day_needed"]]);
 		expect(problemsOf({ outcome: "call_back", nextOn: "2031-05-04", nextTime: "14:30" })).toBeUndefined();
 	});
 

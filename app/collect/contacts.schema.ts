@@ -28,7 +28,7 @@ export const ContactForm = z
 	.superRefine(({ outcome, nextOn, nextTime }, context) => {
 		// "Ring again" without a day, or a time of no day, would never come up.
 		if (nextOn === undefined && (outcome === "call_back" || nextTime !== undefined))
-			context.addIssue({ code: "custom", path: ["nextOn"], message: "empty" });
+			context.addIssue({ code: "custom", path: ["nextOn"], message: "next_day_needed" });
 	});
 export type NewContact = z.infer<typeof ContactForm>;
 export type ContactWay = (typeof contactWays)[number];

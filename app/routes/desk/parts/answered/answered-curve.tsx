@@ -31,7 +31,7 @@ export function AnsweredCurve({ curve, weigh }: { curve: Curve; weigh: Weighing 
 			<div className="mt-4 max-w-2xl">
 				<DataTable
 					caption={t(`rates.curveOf.${weigh}`)}
-					rows={daysToTell(lastDay, mostRows)}
+					rows={daysOf(lastDay, now.points.length - 1)}
 					rowKey={String}
 					columns={[
 						{
@@ -50,6 +50,11 @@ export function AnsweredCurve({ curve, weigh }: { curve: Curve; weigh: Weighing 
 			</div>
 		</>
 	);
+}
+
+/** Days of both seasons, and today: where this one stands now is what is looked for. */
+function daysOf(lastDay: number, today: number): number[] {
+	return [...new Set([...daysToTell(lastDay, mostRows), Math.max(0, today)])].toSorted((a, b) => a - b);
 }
 
 type LinesProps = { seasons: Curve["now"][]; lastDay: number; label: string };

@@ -3,6 +3,7 @@ import type { Associate } from "#app/auth/viewer.ts";
 import { findEarlierSurvey, findSurveyDays, listAnsweredDays } from "#app/collect/answered-days.server.ts";
 import type { AnsweredQuery } from "#app/collect/answered.schema.ts";
 import { listOutcomes, type OutcomeRow } from "#app/collect/dispositions.server.ts";
+import { sizeClasses } from "#app/collect/frame.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { sharesByDay } from "#app/estimate/answered-over-time.ts";
 import { frameResponse } from "#app/estimate/response-rate.ts";
@@ -33,7 +34,7 @@ export async function readResponseRates(trx: Trx, viewer: Associate, surveyId: s
 		query,
 		whole: partOf(outcomes),
 		dispositions: sumByDisposition(outcomes),
-		parts: [...groupBy(outcomes, partKey(query.by))].map(([key, rows]) => ({
+		parts: [...groupBy(inOrder(outcomes, query.by), partKey(query.by))].map(([key, rows]) => ({
 			key,
 			name: nameOf(rows[0]!),
 			...partOf(rows),
@@ -93,6 +94,16 @@ const partKey = (by: AnsweredQuery["by"]) => (row: OutcomeRow) => {
 	if (by === "state") return row.stateFips;
 	return `${row.stateFips} ${by === "stratum" ? row.sizeClass : (row.districtKey ?? "")}`;
 };
+
+/** Parts stand in the order of their first rows; strata by size, whichever districts they are in. */
+function inOrder(rows: OutcomeRow[], by: AnsweredQuery["by"]): OutcomeRow[] {
+	if (by !== "stratum") return rows;
+	return rows.toSorted((a, b) => a.stateFips.localeCompare(b.stateFips) || sizeOf(a) - sizeOf(b));
+}
+
+function sizeOf({ sizeClass }: OutcomeRow): number {
+	return sizeClasses.indexOf(sizeClass);
+}
 
 function nameOf({ stateFips, districtName, sizeClass }: OutcomeRow) {
 	return { stateFips, districtName, sizeClass };

@@ -25,7 +25,7 @@ export function EntryChecks({ checks, steps, confirmed }: EntryChecksProps) {
 				<input key={id} type="hidden" name="confirm" value={id} />
 			))}
 			{checks.length > 0 && (
-				<div ref={box} tabIndex={-1} role="alert" className="mt-6">
+				<div ref={box} tabIndex={-1} role="alert" className="mt-6 max-w-prose">
 					<Notice tone="attention" title={t("grower:check.title", { count: checks.length })}>
 						<ul className="list-none space-y-3">
 							{checks.map(({ id, stepKey, about, message }) => (
