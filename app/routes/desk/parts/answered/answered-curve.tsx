@@ -20,9 +20,11 @@ export function AnsweredCurve({ curve, weigh }: { curve: Curve; weigh: Weighing 
 	return (
 		<>
 			<figure>
-				<div className="overflow-x-auto">
+				{/* Scrolled by keyboard only while in focus. */}
+				{/* oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex */}
+				<section tabIndex={0} aria-label={t("rates.overTime")} className="overflow-x-auto">
 					<Lines seasons={seasons} lastDay={lastDay} label={t(`rates.curveOf.${weigh}`)} />
-				</div>
+				</section>
 				<figcaption className="mt-1 text-sm text-quiet">
 					{t("rates.curveNow", { season: String(now.season) })}{" "}
 					{before && t("rates.curveBefore", { season: String(before.season) })}
