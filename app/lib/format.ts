@@ -78,12 +78,10 @@ export function formatterFor(language: string, t: TFunction) {
 			date(value, { day: "numeric", month: "long", year: "numeric", timeZone }),
 		/** A file's size in the unit that reads best; kilo is a thousand, as the byte count itself may stand beside it. */
 		fileSize: (bytes: number) => {
-			const [unit, size] =
-				bytes < 1e3 ? ["byte", bytes] : bytes < 1e6 ? ["kilobyte", bytes / 1e3] : ["megabyte", bytes / 1e6];
-			const maximumFractionDigits = Number(size) < 10 && unit !== "byte" ? 1 : 0;
-			return new Intl.NumberFormat(locale, { style: "unit", unit: String(unit), maximumFractionDigits }).format(
-				Number(size),
-			);
+			const unit = bytes < 1e6 ? "kilobyte" : "megabyte";
+			const size = bytes / (bytes < 1e6 ? 1e3 : 1e6);
+			const maximumFractionDigits = size < 10 ? 1 : 0;
+			return new Intl.NumberFormat(locale, { style: "unit", unit, maximumFractionDigits }).format(size);
 		},
 		list: (items: string[]) => new Intl.ListFormat(locale, { type: "conjunction" }).format(items),
 		compare: new Intl.Collator(locale, { numeric: true }).compare,

@@ -34,6 +34,17 @@ export default function Api({ loaderData }: Route.ComponentProps) {
 	return (
 		<Page title={t("api.title")} lead={t("api.lead")}>
 			<HowItWorks {...loaderData} />
+			<nav aria-label={t("api.page.contents")} className="no-print mt-8">
+				<ul className="columns-1 sm:columns-2">
+					{loaderData.operations.map(({ id }) => (
+						<li key={id}>
+							<a href={`#${id}`} className="inline-flex min-h-9 items-center">
+								{t(`api.operation.${id}.name`)}
+							</a>
+						</li>
+					))}
+				</ul>
+			</nav>
 			{loaderData.operations.map((operation) => (
 				<OperationSection key={operation.id} operation={operation} {...loaderData} />
 			))}

@@ -156,7 +156,7 @@ export default function DataRelease({ loaderData }: Route.ComponentProps) {
 					text={t("data.one.citation", {
 						network: t("data.one.network"),
 						year,
-						title: wordsIn(release.title, i18n.language),
+						title: `${wordsIn(release.title, i18n.language)}, ${release.season}`,
 						number: release.number,
 						address,
 					})}

@@ -44,7 +44,8 @@ export function toldOperations(t: TFunction): ToldOperation[] {
 		parameters: listParameters(operations[id], t).map((parameter) => {
 			const schema = parameter.schema as Schema;
 			const one = schema.items ?? schema;
-			const ranged = one.minimum !== undefined && one.maximum !== undefined;
+			// The largest number that a column holds says nothing to a reader.
+			const ranged = one.minimum !== undefined && one.maximum !== undefined && one.maximum < 1_000_000;
 			return {
 				name: parameter.name,
 				in: parameter.in,
