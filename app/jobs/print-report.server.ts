@@ -20,25 +20,36 @@ const mostSeconds = 90;
 export async function printReport({ reportId, language }: { reportId: string; language: Language }): Promise<void> {
 	const report = await findPublishedById(reportId);
 	if (!report) return;
-	const made = (await hasBrowser())
-		? await print(`${env().BASE_URL}/reports/${report.slug}?version=${report.version}`, language)
+	const browser = await findBrowser();
+	const made = browser
+		? await print(browser, `${env().BASE_URL}/reports/${report.slug}?version=${report.version}`, language)
 		: ({ problem: "no_browser" } as const);
 	await scopedTransaction({ kind: "none" }, (trx) => keepReportFile(trx, reportId, language, made));
 	if ("problem" in made) log.warn({ reportId, language, problem: made.problem }, "no PDF of a report");
 }
 
-async function hasBrowser(): Promise<boolean> {
-	return access(env().CHROMIUM_PATH, constants.X_OK).then(
-		() => true,
-		() => false,
-	);
+/** Where Debian's packages put it, unless the setting names another. */
+const browsers = ["/usr/bin/chromium-headless-shell", "/usr/bin/chromium", "/usr/bin/chromium-browser"];
+
+async function findBrowser(): Promise<string | undefined> {
+	const named = env().CHROMIUM_PATH;
+	for (const file of named ? [named] : browsers) {
+		const runs = await access(file, constants.X_OK).then(
+			() => true,
+			() => false,
+		);
+		if (runs) return file;
+	}
+	return undefined;
 }
 
-async function print(address: string, language: Language): Promise<{ bytes: Buffer } | { problem: "failed" }> {
+type Printed = { bytes: Buffer } | { problem: "failed" };
+
+async function print(browser: string, address: string, language: Language): Promise<Printed> {
 	const folder = await mkdtemp(path.join(tmpdir(), "tallygrove-print-"));
 	const file = path.join(folder, "report.pdf");
 	try {
-		await run(env().CHROMIUM_PATH, [...switches(folder, language), `--print-to-pdf=${file}`, address], {
+		await run(browser, [...switches(folder, language), `--print-to-pdf=${file}`, address], {
 			timeout: mostSeconds * 1000,
 			killSignal: "SIGKILL",
 		});

@@ -18,8 +18,8 @@ const Settings = z.object({
 	CODE_VERSION: z.string().default("unversioned"),
 	/** The first coordinator, who grants all other roles: the provider's subject. */
 	COORDINATOR_SUBJECT: z.string().optional(),
-	/** The browser that prints reports; where there is none, reports have no PDF and the desk is told. */
-	CHROMIUM_PATH: z.string().min(1).default("/usr/bin/chromium"),
+	/** The browser that prints reports, where it is not Debian's. Without one, reports have no PDF and the desk is told. */
+	CHROMIUM_PATH: z.string().min(1).optional(),
 	/** The folder of growers' photos, which every server and worker shares and no web server serves. */
 	PHOTO_DIR: z
 		.string()

@@ -56,6 +56,7 @@ export async function startStack(
 		OAUTH_CLIENT_SECRET: "only-for-tests-client",
 		PHOTO_DIR: photoFolder,
 		LOG_LEVEL: "warn",
+		...(process.env.CHROMIUM_PATH && { CHROMIUM_PATH: process.env.CHROMIUM_PATH }),
 		...(options.coordinatorSubject && { COORDINATOR_SUBJECT: options.coordinatorSubject }),
 	};
 	const children = new Map<ProgramName, ChildProcess>();

@@ -17,16 +17,18 @@ export function Chart({ drawn, season }: { drawn: ResolvedChart; season: number 
 	const subject = useSubject(drawn, season);
 	const alternative = t(`chart.alternative.${drawn.chart}`, { finding, subject });
 	return (
-		<figure className="my-8">
-			<figcaption className="mb-3">
+		<figure className="chart-figure my-8">
+			<figcaption className="mb-3 break-after-avoid">
 				<p className="max-w-prose text-lg font-bold">{finding}</p>
 				<p className="text-sm text-quiet">{subject}</p>
 			</figcaption>
-			<Drawing drawn={drawn} alternative={alternative} />
-			{drawn.chart === "causes" && <Key drawn={drawn} />}
-			<p className="mb-3 mt-2 max-w-prose text-sm text-quiet">
-				{t(`chart.read.${drawn.chart}`)} {isCareful(drawn) && t("chart.care")}
-			</p>
+			<div className="chart-drawing">
+				<Drawing drawn={drawn} alternative={alternative} />
+				{drawn.chart === "causes" && <Key drawn={drawn} />}
+				<p className="mb-3 mt-2 max-w-prose text-sm text-quiet">
+					{t(`chart.read.${drawn.chart}`)} {isCareful(drawn) && t("chart.care")}
+				</p>
+			</div>
 			<ChartTable drawn={drawn} caption={subject} />
 		</figure>
 	);

@@ -2,12 +2,13 @@ import { useFormat } from "#app/i18n/use-format.ts";
 import { classes } from "#app/components/classes.ts";
 import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import { markFill } from "./chart-fills.ts";
+import { decimalsOf } from "./chart-look.ts";
 import { chartWidth } from "./row-chart.tsx";
 import { placeOn, scaleOf } from "./scale.ts";
 
 type SeasonLineProps = { drawn: Extract<ResolvedChart, { chart: "seasons" }>; alternative: string };
 
-const [top, bottom, left, right] = [24, 150, 40, chartWidth - 40];
+const [top, bottom, left, right] = [28, 150, 72, chartWidth - 40];
 
 /** One figure season by season, each with its likely range; a season without a number is left open. */
 export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLineProps) {
@@ -29,7 +30,12 @@ export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLine
 			className="chart block h-auto w-full max-w-lg"
 		>
 			{scale.ticks.map((tick) => (
-				<line key={tick} x1={0} x2={chartWidth} y1={y(tick)} y2={y(tick)} className="chart-grid" />
+				<g key={tick}>
+					<line x1={0} x2={chartWidth} y1={y(tick)} y2={y(tick)} className="chart-grid" />
+					<text x={0} y={y(tick) - 3} className="chart-tick">
+						{days ? format.figure(tick, measure) : format.number(tick, decimalsOf(scale.ticks))}
+					</text>
+				</g>
 			))}
 			<path d={path} className="chart-line" />
 			{told.map(({ season, cell }) => {

@@ -31,7 +31,22 @@ type ValueRowsProps = {
 	alternative: string;
 };
 
-function ValueRows({ rows, measure, bars, alternative }: ValueRowsProps) {
+/** So many rows without a number stand for themselves; more of one kind are one row, and the table names them all. */
+const mostBlank = 2;
+
+function useJoined(rows: ValueRowsProps["rows"]): ValueRowsProps["rows"] {
+	const { t } = useTranslation("report");
+	const of = (look: string) => rows.filter(({ cell }) => lookOf(cell) === look);
+	const joined = (["withheld", "rough"] as const).flatMap((look) => {
+		const [first, ...rest] = of(look);
+		if (!first || rest.length < mostBlank) return of(look);
+		return [{ ...first, key: look, label: t("chart.several", { count: rest.length + 1 }) }];
+	});
+	return [...of("number"), ...joined];
+}
+
+function ValueRows({ rows: all, measure, bars, alternative }: ValueRowsProps) {
+	const rows = useJoined(all);
 	const valueText = useValueText();
 	const format = useFormat();
 	const days = measure.unit === "day";

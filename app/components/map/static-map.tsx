@@ -56,6 +56,13 @@ export const StaticMap = memo(function StaticMap({
 				const cell = byArea.get(areaOfCounty[fips] ?? "");
 				return <path key={fips} d={outline} {...lookOfShape(cell, hue, classes.length, id)} />;
 			})}
+			<Hatching
+				id={`${id}-hatched`}
+				picture={picture}
+				outlines={picture.counties.flatMap(({ fips, outline }) =>
+					byArea.get(areaOfCounty[fips] ?? "")?.look === "withheld" ? [outline] : [],
+				)}
+			/>
 			<path d={picture.stateLines} className="map-states" />
 			{border && <path d={border} className="map-selected-halo" />}
 			{border && <path d={border} className="map-selected" />}
@@ -70,11 +77,34 @@ export const StaticMap = memo(function StaticMap({
 	);
 });
 
+/** As far apart as the lines of the pattern that legends have. */
+const hatchStep = 7 * Math.SQRT2;
+
+/**
+ * One set of lines for all withheld counties, cut to their outlines. A pattern would be printed as a picture for each county,
+ * which makes a file of some megabytes.
+ */
+function Hatching({ id, picture, outlines }: { id: string; picture: DrawnPicture; outlines: string[] }) {
+	if (outlines.length === 0) return null;
+	const { width, height } = picture;
+	const lines = Array.from({ length: Math.ceil((width + height) / hatchStep) }, (_, index) => {
+		const from = Math.round(index * hatchStep * 10) / 10;
+		return `M${from} 0L${Math.round((from - height) * 10) / 10} ${height}`;
+	});
+	return (
+		<>
+			<clipPath id={id}>
+				<path d={outlines.join("")} />
+			</clipPath>
+			<path d={lines.join("")} clipPath={`url(#${id})`} className="map-hatch" />
+		</>
+	);
+}
+
 /** Nothing but the class name and the pattern: a withheld county is told from a blank one by its hatching only. */
 function lookOfShape(cell: DrawnCell | undefined, hue: Hue, classCount: number, id: string) {
-	if (cell?.look === "withheld" || cell?.look === "rough")
-		return { className: "map-county", fill: `url(#${id}-${cell.look})` };
-	if (cell?.look === "no_growers") return { className: "map-county map-blank" };
+	if (cell?.look === "rough") return { className: "map-county", fill: `url(#${id}-rough)` };
+	if (cell?.look === "no_growers" || cell?.look === "withheld") return { className: "map-county map-blank" };
 	if (cell?.look !== "number" || cell.classIndex === null) return { className: "map-county map-unasked" };
 	return { className: `map-county ${fillOf(hue, cell.classIndex, classCount)}` };
 }

@@ -78,7 +78,7 @@ test("a release led by days tells the earliest crop in sentences of days, and ot
 	const made = draftReport({ ...input, measures: days, measure: days[0]!, crops, districts: [] });
 	expect(made.summary.en).toBe("lead 2025 plum [[first_bloom|plum|network]] day");
 	expect(JSON.stringify(made.blocks)).toContain("where day");
-	expect(made.blocks.filter(({ type }) => type === "figure")).toMatchObject([{ measure: "petal_fall", crop: "plum" }]);
+	expect(made.blocks).toContainEqual(expect.objectContaining({ type: "chart", chart: "windows" }));
 });
 
 test("the widest changes come first, each with the season before and the mean of seasons where there are several", () => {
@@ -114,4 +114,15 @@ test("causes are drawn where the release tells them, and of pests those that mos
 	expect(texts).toContain("[[scab_seen|apple|network]]");
 	expect(texts).not.toContain("[[scab_seen|plum|network]]");
 	expect(draft.blocks).toContainEqual(expect.objectContaining({ type: "caution", key: "pesticide" }));
+});
+
+test("where the likely ranges of the first two overlap, the first is not told as worse for sure", () => {
+	const near = [
+		{ ...cell("plum", "network", 62), lower: 55, upper: 69 },
+		{ ...cell("apple", "network", 58), lower: 50, upper: 66 },
+	];
+	const draft = draftReport({ ...input, crops: near, districts: [] });
+	expect(draft.summary.en).toMatch(/^leadClose .*\[\[crop_loss\|apple\|network\]\]/);
+	const apart = [near[0]!, { ...near[1]!, upper: 54 }];
+	expect(draftReport({ ...input, crops: apart, districts: [] }).summary.en).toMatch(/^lead /);
 });

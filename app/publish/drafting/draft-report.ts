@@ -29,18 +29,25 @@ export type DraftInput = {
  */
 export function draftReport(input: DraftInput): ReportContent {
 	const { release, measure, crops } = input;
-	const worst = worstFirst(measure, crops)[0];
+	const [worst, second] = worstFirst(measure, crops);
 	const sentence = both(input.say);
 	const about = { season: release.season };
+	// What the likely ranges do not bear is never said.
+	const close = worst && second && overlap(worst, second) ? second : undefined;
 	const lead = worst && {
 		...about,
 		crop: worst.cropKey,
 		figure: referenceText({ measure: measure.key, crop: worst.cropKey, area: worst.areaKey }),
 		measure: saidOf(measure),
+		...(close && {
+			second: close.cropKey,
+			secondFigure: referenceText({ measure: measure.key, crop: close.cropKey, area: close.areaKey }),
+		}),
 	};
+	const leading = lead ? sentence(close ? "leadClose" : "lead", lead) : sentence("noLead", about);
 	const blocks: Unnamed[] = [
 		{ type: "heading", text: sentence("happened") },
-		{ type: "text", text: lead ? sentence("lead", lead) : sentence("noLead", about) },
+		{ type: "text", text: leading },
 		...(worst ? [chart("crops", measure, worst.cropKey)] : []),
 		...changePart(input, sentence),
 		...(worst ? wherePart(input, worst.cropKey, sentence) : []),
@@ -52,9 +59,15 @@ export function draftReport(input: DraftInput): ReportContent {
 	];
 	return {
 		title: sentence("title", about),
-		summary: lead ? sentence("lead", lead) : sentence("noLead", about),
+		summary: leading,
 		blocks: blocks.map((block, index) => Object.assign({ id: `b${index + 1}` }, block) as Block),
 	};
+}
+
+/** Whether two likely ranges have a value in common; a figure without a range is a point. */
+function overlap(a: CropCell, b: CropCell): boolean {
+	const [aLow, aHigh, bLow, bHigh] = [a.lower ?? a.value, a.upper ?? a.value, b.lower ?? b.value, b.upper ?? b.value];
+	return (aLow ?? 0) <= (bHigh ?? 0) && (bLow ?? 0) <= (aHigh ?? 0);
 }
 
 const counted = (status: string) => referenceText({ measure: cellCounts, crop: status, area: "county" });
@@ -79,7 +92,7 @@ function changePart({ measure, crops, earlier, release }: DraftInput, sentence: 
 	const lines = told.map(({ crop, seasons }) => {
 		const at = { measure: measure.key, crop, area: "network" };
 		return sentence(seasons.length > 1 ? "changeMean" : "change", {
-			crop,
+			named: crop,
 			now: referenceText(at),
 			last: referenceText({ ...at, when: "last" }),
 			mean: referenceText({ ...at, when: "mean" }),
@@ -106,7 +119,7 @@ function otherParts({ measures, measure, pests }: DraftInput, crop: string, sent
 		.slice(0, mostPests)
 		.map(({ measure: { key, label }, cell }) => ({
 			figure: referenceText({ measure: key, crop: cell.cropKey, area: cell.areaKey }),
-			crop: cell.cropKey,
+			named: cell.cropKey,
 			label,
 		}));
 	const ofPests: Unnamed[] =
@@ -156,7 +169,9 @@ function wherePart({ measures, measure, districts }: DraftInput, crop: string, s
 				]
 			: [];
 	const rest = measures.filter(({ key }) => key !== measure.key);
-	const days = rest.filter(({ kind }) => kind === "day");
+	// Two days or more are drawn as strips.
+	const days =
+		measures.filter(({ kind }) => kind === "day").length > 1 ? [] : rest.filter(({ kind }) => kind === "day");
 	const parts = partsOfLoss(measure, measures);
 	const others = rest
 		.filter((other) => other.kind !== "day" && other.worse === measure.worse && other.hue !== "pests")

@@ -24,7 +24,9 @@ export function Comments({ comments, blocks, open, sent }: CommentsProps) {
 	const waiting = comments.filter(({ resolvedAt }) => !resolvedAt).length;
 	return (
 		<details className="no-print mb-8 border-y border-rule py-3" open={waiting > 0 || undefined}>
-			<summary className="min-h-11 cursor-pointer py-2 font-bold">{t("comments.title", { count: waiting })}</summary>
+			<summary className="min-h-11 cursor-pointer py-2 font-bold">
+				{waiting > 0 ? t("comments.title", { count: waiting }) : t("comments.none")}
+			</summary>
 			<ul className="list-none">
 				{comments.map((comment) => (
 					<Comment key={comment.commentId} comment={comment} blocks={blocks} />

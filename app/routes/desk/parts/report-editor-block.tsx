@@ -69,14 +69,7 @@ function BlockFields({ block, name, label, offered, problems }: BlockFieldsProps
 		case "text":
 			return (
 				<>
-					<TextPair
-						name={`${name}.text`}
-						label={label}
-						value={block.text}
-						problems={problems}
-						rows={6}
-						help={t("report:editor.markdown")}
-					/>
+					<TextPair name={`${name}.text`} label={label} value={block.text} problems={problems} rows={6} />
 					<Button kind="secondary" size="small" name="intent" value={`insert:${block.id}`}>
 						{t("report_editor.insert")}
 					</Button>

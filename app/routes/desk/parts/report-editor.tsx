@@ -72,6 +72,7 @@ export function ReportEditor({ report, offered, cautionsAdded, answer }: ReportE
 					/>
 				</Section>
 				<Section title={t("report_editor.blocks")} id="field-blocks">
+					<p className="mb-4 max-w-prose text-sm text-quiet">{t("report:editor.markdown")}</p>
 					<PlacePicker offered={offered} />
 					<ol className="list-none">
 						{content.blocks.map((block, index) => (

@@ -10,9 +10,11 @@ export async function draftWords(): Promise<{ en: Say; es: Say }> {
 	await words.init({ ...i18nextSettings, resources, lng: "en" });
 	const sayIn = (language: Language): Say => {
 		const t = words.getFixedT(language, "public");
-		return (key, { crop, measure, ...values } = {}) =>
+		return (key, { crop, second, named, measure, ...values } = {}) =>
 			t([`report_draft.${key}_${measure}`, `report_draft.${key}`], {
 				...values,
+				named: named && t(`common:crop.${named}`),
+				second: second && t([`crop_said.${second}`, `common:crop.${second}`]),
 				crop: crop && t([`crop_said.${crop}`, `common:crop.${crop}`]),
 			});
 	};
