@@ -5,6 +5,7 @@ import type { Release, ReleaseMeasure } from "./release.ts";
 import { listMeasures, listReleases } from "./releases.server.ts";
 import { cellCounts, type Reference, referencesOf, type ReportContent } from "./report.ts";
 import type { ResolvedFigure } from "./resolved-report.server.ts";
+import { reader } from "./reader.server.ts";
 
 export type Told = Pick<ReleaseMeasure, "label" | "unit" | "decimals" | "season" | "hue">;
 /** What a figure of earlier seasons is: that of one season, or the mean of those that have one. */
@@ -42,8 +43,8 @@ export async function readSource(content: ReportContent, release: Release): Prom
 const mostSeasons = 5;
 
 /** The standing releases of the same form in the five seasons before, the latest first, one a season. */
-export async function listEarlierReleases({ formKey, season }: Release): Promise<Release[]> {
-	const releases = (await listReleases()).filter(
+export async function listEarlierReleases({ formKey, season }: Release, db = reader()): Promise<Release[]> {
+	const releases = (await listReleases(db)).filter(
 		(one) => one.formKey === formKey && one.season < season && one.season >= season - mostSeasons,
 	);
 	const bySeason = groupBy(releases, (one) => one.season);
@@ -54,11 +55,12 @@ export async function listEarlierReleases({ formKey, season }: Release): Promise
 export async function findEarlier(
 	release: Release,
 	addresses: Omit<Reference, "when">[],
+	db = reader(),
 ): Promise<Record<string, SeasonCell[]>> {
 	if (addresses.length === 0) return {};
-	const releases = await listEarlierReleases(release);
+	const releases = await listEarlierReleases(release, db);
 	const seasons = await Promise.all(
-		releases.map(async ({ releaseId, season }) => ({ season, cells: await findCells(releaseId, addresses) })),
+		releases.map(async ({ releaseId, season }) => ({ season, cells: await findCells(releaseId, addresses, db) })),
 	);
 	return Object.fromEntries(
 		addresses.map((address) => {

@@ -41,3 +41,13 @@ export async function ensureChromium() {
 	if (!installed) throw new Stop("Chromium was installed but is not found. Set CHROMIUM_PATH to its program.");
 	return installed;
 }
+
+/** What reads the text of a PDF, to hold it against the page. */
+export async function ensurePdfReader() {
+	const found = findProgram(["pdftotext"]);
+	if (found) return found;
+	await installDebian(["poppler-utils"], { what: "pdftotext (for the tests of printed reports)" });
+	const installed = findProgram(["pdftotext"]);
+	if (!installed) throw new Stop("poppler-utils was installed but pdftotext is not found.");
+	return installed;
+}

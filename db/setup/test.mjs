@@ -2,7 +2,7 @@
 import { rmSync } from "node:fs";
 import { join } from "node:path";
 import { ensureBuild } from "./build.mjs";
-import { ensureChromium } from "./chromium.mjs";
+import { ensureChromium, ensurePdfReader } from "./chromium.mjs";
 import { startCluster, stopCluster } from "./cluster.mjs";
 import { atEnd, end, endOnSignals } from "./end.mjs";
 import { local, makeLocal, readJson, root } from "./local.mjs";
@@ -59,6 +59,7 @@ async function prepare() {
 	await step("npm packages", ensurePackages);
 	let chromium;
 	await step("Chromium", async () => (chromium = await ensureChromium()));
+	await step("Reader of PDF files", ensurePdfReader);
 	let cluster;
 	await step("Database cluster for the tests", async () => {
 		cluster = await startCluster({ name: "test", throwaway: true });

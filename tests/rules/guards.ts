@@ -59,12 +59,13 @@ function callsIn(node: ts.Node): string[] {
 	return [...own, ...inner];
 }
 
-/** What each top-level function of a file asks first. */
+/** What each top-level function of a file asks first, by itself or through another of the file. */
 function askedIn(source: ts.SourceFile): Asked {
 	const functions = source.statements.filter(ts.isFunctionDeclaration);
-	return new Map(
+	const own = new Map(
 		functions.flatMap(({ name, body }) => (name && body ? [[name.text, callsIn(firstStatement(body))] as const] : [])),
 	);
+	return new Map([...own].map(([name, calls]) => [name, calls.flatMap((call) => [call, ...(own.get(call) ?? [])])]));
 }
 
 function askedInParts(file: string, route: ts.SourceFile, sources: Sources): Asked {

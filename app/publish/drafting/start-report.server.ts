@@ -37,6 +37,7 @@ export async function startReport(
 	const earlier = await findEarlier(
 		release,
 		crops.map(({ cropKey }) => ({ measure: measure.key, crop: cropKey, area: "network" })),
+		released,
 	);
 	const content = draftReport({
 		release,
