@@ -25,11 +25,11 @@ async function insertOperations(trx: Trx, operations: SeedOperation[]): Promise<
 		select distinct on (owner_id) owner_id, owner_name
 		from jsonb_to_recordset(${all}::jsonb) as o(owner_id uuid, owner_name text)`.execute(trx);
 	await sql`insert into directory.operation (operation_id, owner_id, name, county_fips, state_fips, contact_name, email,
-			language, mass_unit, created_at, updated_at)
+			phone, language, mass_unit, created_at, updated_at)
 		select operation_id, owner_id, name, county_fips, left(county_fips, 2), contact_name, email,
-			language, mass_unit, ${listedAt}, ${listedAt}
+			phone, language, mass_unit, ${listedAt}, ${listedAt}
 		from jsonb_to_recordset(${all}::jsonb) as o(operation_id uuid, owner_id uuid, name text, county_fips text,
-			contact_name text, email text, language text, mass_unit text)`.execute(trx);
+			contact_name text, email text, phone text, language text, mass_unit text)`.execute(trx);
 	await sql`insert into directory.planting (planting_id, operation_id, crop_key, cultivar, bearing_trees, young_trees,
 			planted_year, created_at, trees_told_at)
 		select p.planting_id, o.operation_id, p.crop_key, p.cultivar, p.bearing_trees, p.young_trees, p.planted_year, ${listedAt}, ${listedAt}

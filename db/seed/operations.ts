@@ -20,6 +20,7 @@ export type SeedOperation = {
 	county_fips: string;
 	contact_name: string;
 	email: string;
+	phone: string | null;
 	language: "en" | "es";
 	mass_unit: MassUnit;
 	plantings: SeedPlanting[];
@@ -83,6 +84,7 @@ function inventOperation(random: Random, county: string, number: number): SeedOp
 		county_fips: county,
 		contact_name: contact,
 		email: `grower${number}@orchard.example`,
+		phone: phoneOf(county.slice(0, 2), number),
 		language: random.chance(0.12) ? "es" : "en",
 		mass_unit: pickWeighted(random, [
 			["bu", 0.5],
@@ -96,6 +98,20 @@ function inventOperation(random: Random, county: string, number: number): SeedOp
 
 function holderOf({ owner_id, owner_name, contact_name, language, mass_unit }: SeedOperation) {
 	return { owner_id, owner_name, contact_name, language, mass_unit };
+}
+
+/** Area codes of each state; in each, a hundred numbers are kept for invented people. */
+const areaCodes: Record<string, readonly string[]> = {
+	"17": ["217", "309", "618", "779", "815"],
+	"19": ["319", "515", "563", "641", "712"],
+	"27": ["218", "320", "507", "651", "763"],
+	"55": ["262", "414", "608", "715", "920"],
+};
+
+/** A number that no other operation has, as far as such numbers go; nobody knows those of the others. */
+function phoneOf(stateFips: string, number: number): string | null {
+	const areaCode = areaCodes[stateFips]?.[Math.floor(number / 100)];
+	return areaCode === undefined ? null : `${areaCode} 555 01${String(number % 100).padStart(2, "0")}`;
 }
 
 /** An owner's next operation lies in the same county, or else in another of the same state. */
