@@ -71,7 +71,8 @@ beforeAll(async () => {
 	});
 	const addForm = (key: string, state: string) =>
 		one(
-			`with f as (insert into collect.form (form_key, state_fips) values ($1, array[$2]) returning form_id)
+			`with f as (insert into collect.form (form_key, state_fips, made_by)
+				select $1, array[$2], person_id from auth.person limit 1 returning form_id)
 			insert into collect.form_version (form_id, version, definition) select form_id, 1, $3 from f returning form_id as id`,
 			[key, state, JSON.stringify({ ...readyForms.after_harvest, key })],
 		);

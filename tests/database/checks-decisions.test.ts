@@ -11,6 +11,7 @@ import { scopedTransaction } from "#app/auth/scope.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
 import { answer, check, factOf, type FindingRow, findingsOf, oddSurvey } from "./checks-fixture.ts";
 import { addPerson, asDesk, connectOwner, count, loadPlaces, useDatabase } from "./surveys-fixture.ts";
+import { expectSameTallies } from "./tally-fixture.ts";
 
 let database: Awaited<ReturnType<typeof createTestDatabase>>;
 let owner: Client;
@@ -56,8 +57,8 @@ async function expectTalliesKept(surveyId: string) {
 		await rebuildTallies(trx, surveyId);
 		return [before, await listTallies(trx, surveyId)];
 	});
-	expect(kept).toEqual(rebuilt);
-	expect(kept.length).toBeGreaterThan(0);
+	expectSameTallies(kept!, rebuilt!);
+	expect(kept!.length).toBeGreaterThan(0);
 }
 
 describe("a correction", () => {

@@ -8,7 +8,7 @@ import { type KeptTally, tallyOf } from "#app/tally/tally.ts";
 import { connect } from "#db/connect.ts";
 import type { DB } from "#db/schema.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
-import { asItsGrower, frameOf, type Place, putFact } from "./tally-fixture.ts";
+import { asItsGrower, expectSameTallies, frameOf, type Place, putFact } from "./tally-fixture.ts";
 
 // Tallies are kept by triggers on the facts: here all that can happen to facts, by one hand and by many at once.
 
@@ -34,23 +34,6 @@ async function rebuilt(surveyId: string): Promise<KeptTally[]> {
 		await rebuildTallies(trx, surveyId);
 		return listTallies(trx, surveyId);
 	});
-}
-
-const sums = { sumY: 0, sumX: 0, mYY: 0, mXX: 0, mXY: 0, largestY: 0, secondY: 0 };
-const unsummed = (tally: KeptTally) => ({ ...tally, ...sums });
-
-/** Equal in all that is counted, and to rounding in what is summed: the order of adding may differ. */
-function expectEqual(actual: KeptTally[], expected: KeptTally[]): void {
-	expect(actual.map(unsummed)).toEqual(expected.map(unsummed));
-	for (const [index, tally] of actual.entries()) {
-		const other = expected[index]!;
-		for (const key of ["sumY", "sumX", "largestY", "secondY"] as const) expectClose(tally[key], other[key], 1e6);
-		for (const key of ["mYY", "mXX", "mXY"] as const) expectClose(tally[key], other[key], 1e9);
-	}
-}
-
-function expectClose(actual: number, expected: number, size: number): void {
-	expect(Math.abs(actual - expected)).toBeLessThanOrEqual(1e-12 * Math.max(size, Math.abs(expected)));
 }
 
 type Held = { place: Place; y: number | null; x: number | null; setAside: boolean };
@@ -103,8 +86,8 @@ test("after any history the kept tallies are those of the facts, and equal to a 
 			const facts = new Map<string, Held>();
 			for (const step of history) await live(frame.surveyId, frame.places[step.who]!, step, facts);
 			const now = await kept(frame.surveyId);
-			expectEqual(now, counted([...facts.values()]));
-			expectEqual(await rebuilt(frame.surveyId), now);
+			expectSameTallies(now, counted([...facts.values()]));
+			expectSameTallies(await rebuilt(frame.surveyId), now);
 		}),
 		{ numRuns: 12, seed: 20_401 },
 	);
@@ -170,7 +153,7 @@ test("many who answer, correct and withdraw at the same moment lose nothing and 
 		["yield", "a", 7],
 		["yield", "b", 6],
 	]);
-	expectEqual(await rebuilt(surveyId), now);
+	expectSameTallies(await rebuilt(surveyId), now);
 });
 
 test("a rebuild among submissions loses none of them", async () => {
@@ -217,7 +200,7 @@ test("one statement that adds, changes and drops facts tallies each of them once
 		insert into collect.fact ${columns} ${all} and operation_id = ${operationId}`.execute(owner);
 	const now = await kept(surveyId);
 	expect(now.map(({ n, sumY, owners, secondY }) => [n, sumY, owners, secondY])).toEqual([[3, 30, 3, 10]]);
-	expectEqual(await rebuilt(surveyId), now);
+	expectSameTallies(await rebuilt(surveyId), now);
 });
 
 test("values of 1e9 that differ by one keep their spread", async () => {

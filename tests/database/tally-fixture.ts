@@ -1,5 +1,7 @@
 import { type Insertable, type Kysely, sql, type Transaction } from "kysely";
+import { expect } from "vitest";
 import { setScope } from "#app/auth/scope.server.ts";
+import type { KeptTally } from "#app/tally/tally.ts";
 import type { CollectFact, DB } from "#db/schema.ts";
 
 export type Place = { operationId: string; ownerId: string; countyFips: string; stratumKey: string };
@@ -90,4 +92,21 @@ async function addOperation(owner: Kysely<DB>, ownerId: string, countyFips: stri
 		.returning("operation_id")
 		.executeTakeFirstOrThrow();
 	return operation_id;
+}
+
+const sums = { sumY: 0, sumX: 0, mYY: 0, mXX: 0, mXY: 0, largestY: 0, secondY: 0 };
+const unsummed = (tally: KeptTally) => ({ ...tally, ...sums });
+
+/** Equal in all that is counted, and to rounding in what is summed: the order of adding may differ. */
+export function expectSameTallies(actual: KeptTally[], expected: KeptTally[]): void {
+	expect(actual.map(unsummed)).toEqual(expected.map(unsummed));
+	for (const [index, tally] of actual.entries()) {
+		const other = expected[index]!;
+		for (const key of ["sumY", "sumX", "largestY", "secondY"] as const) expectClose(tally[key], other[key], 1e6);
+		for (const key of ["mYY", "mXX", "mXY"] as const) expectClose(tally[key], other[key], 1e9);
+	}
+}
+
+function expectClose(actual: number, expected: number, size: number): void {
+	expect(Math.abs(actual - expected)).toBeLessThanOrEqual(1e-12 * Math.max(size, Math.abs(expected)));
 }

@@ -104,7 +104,8 @@ function Hatching({ id, picture, outlines }: { id: string; picture: DrawnPicture
 /** Nothing but the class name and the pattern: a withheld county is told from a blank one by its hatching only. */
 function lookOfShape(cell: DrawnCell | undefined, hue: Hue, classCount: number, id: string) {
 	if (cell?.look === "rough") return { className: "map-county", fill: `url(#${id}-rough)` };
-	if (cell?.look === "no_growers" || cell?.look === "withheld") return { className: "map-county map-blank" };
+	if (cell?.look === "withheld") return { className: "map-county map-blank map-withheld" };
+	if (cell?.look === "no_growers") return { className: "map-county map-blank" };
 	if (cell?.look !== "number" || cell.classIndex === null) return { className: "map-county map-unasked" };
 	return { className: `map-county ${fillOf(hue, cell.classIndex, classCount)}` };
 }
