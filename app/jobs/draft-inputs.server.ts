@@ -1,5 +1,6 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
+import { baseQuantities, quantityOf } from "#app/collect/base-quantities.ts";
 import { FormDefinition } from "#app/collect/form.ts";
 import { listAreas } from "#app/directory/areas.server.ts";
 import { Words } from "#app/lib/words.ts";
@@ -55,7 +56,7 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 	if (!row) return undefined;
 	const definition = FormDefinition.parse(row.definition);
 	const surveyId = row.survey_id;
-	const baseKeys = definition.measures.flatMap(({ base, key }) => (base ? key.replace(/^base\./, "") : []));
+	const baseKeys = baseQuantities(definition);
 	const rules = ReleaseRules.parse(row.rules);
 	const sensitive = sensitiveMeasures(definition);
 	const states = await countResponses(trx, surveyId);
@@ -83,7 +84,7 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 		frameCells: await listFrameCells(trx, surveyId),
 		baseKeys,
 		sensitive,
-		quantityLabels: new Map(definition.measures.map(({ key, label }) => [key.replace(/^base\./, ""), label])),
+		quantityLabels: new Map(definition.measures.map(({ key, label }) => [quantityOf(key), label])),
 		shares: await listOwnerShares(trx, {
 			surveyId,
 			baseKeys,

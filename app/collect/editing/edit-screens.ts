@@ -1,3 +1,4 @@
+import { quantityOf } from "../base-quantities.ts";
 import { questionsOfMeasure } from "#app/lib/measure-questions.ts";
 import type { Words } from "#app/lib/words.ts";
 import type { Check, Screen } from "../form.ts";
@@ -78,7 +79,7 @@ export function withoutMeasuresOf(draft: FormDraft, gone: ReadonlySet<string>): 
 	if (gone.size === 0) return draft;
 	const isOf = (measure: FormDraft["measures"][number]) =>
 		questionsOfMeasure(measure).some((question) => gone.has(question));
-	const bases = new Set(draft.measures.filter(isOf).map(({ key }) => key.replace(/^base\./, "")));
+	const bases = new Set(draft.measures.filter(isOf).map(({ key }) => quantityOf(key)));
 	const measures = draft.measures
 		.filter((measure) => !isOf(measure))
 		.map((measure) =>

@@ -1,3 +1,4 @@
+import { quantityOf } from "../base-quantities.ts";
 import type { FormDraft } from "./draft.ts";
 import { questionsOf } from "./draft.ts";
 
@@ -37,7 +38,7 @@ export function newKey(words: string, taken: Iterable<string>, otherwise: string
 /** A key for a question; measures are named for questions too. */
 export function newQuestionKey(draft: FormDraft, words: string): string {
 	const questions = questionsOf(draft).map(({ question }) => question.key);
-	const measures = draft.measures.map(({ key }) => key.replace(/^base\./, ""));
+	const measures = draft.measures.map(({ key }) => quantityOf(key));
 	return newKey(words, ["screen", "confirm", "bearing", ...questions, ...measures], "question");
 }
 

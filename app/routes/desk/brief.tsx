@@ -4,10 +4,10 @@ import type { Route } from "./+types/brief";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
-import { BriefForm } from "#app/collect/brief.schema.ts";
+import { BriefForm, plannedRows } from "#app/collect/brief.schema.ts";
 import { findBrief, saveBrief } from "#app/collect/brief.server.ts";
+import { findSurveyForm } from "#app/collect/forms.server.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
-import { FormDefinition } from "#app/collect/form.ts";
 import { Button } from "#app/components/button.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
@@ -36,15 +36,8 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 
 /** What the survey's form can tell. */
 async function listMeasures(trx: Trx, surveyId: string) {
-	const { definition } = await trx
-		.selectFrom("collect.survey as s")
-		.innerJoin("collect.form_version as v", "v.form_version_id", "s.form_version_id")
-		.select("v.definition")
-		.where("s.survey_id", "=", surveyId)
-		.executeTakeFirstOrThrow();
-	return FormDefinition.parse(definition)
-		.measures.filter(({ base }) => !base)
-		.map(({ key, label }) => ({ key, label }));
+	const form = await findSurveyForm(trx, surveyId);
+	return (form?.measures ?? []).filter(({ base }) => !base).map(({ key, label }) => ({ key, label }));
 }
 
 export async function action({ context, params, request }: Route.ActionArgs) {
@@ -138,7 +131,7 @@ function labelsOf(t: (key: string) => string): Record<string, string> {
 		smallestN: "smallestN",
 		largestCv: "largestCv",
 	};
-	const rows = Array.from({ length: 6 }, (_, at) =>
+	const rows = Array.from({ length: plannedRows }, (_, at) =>
 		fields.map((field) => [`planned[${at}].${field}`, t(`brief.${names[field]}`)] as const),
 	);
 	return Object.fromEntries([

@@ -1,7 +1,7 @@
 import { letGo, typedStep, type TypedStep } from "#app/collect/outbox.ts";
 import { type AskPage, newHeld, record, showsBoth, typedNow, typeInto } from "./ask-page.ts";
 import { setHidden, valuesIn } from "./form-values.ts";
-import { change, fieldsOf, postStep, sendWaiting } from "./send.ts";
+import { change, fieldsOf, postStep, sendWaiting, stopSending } from "./send.ts";
 
 /** Ways off a screen that the server drew: each first makes sure of what was typed. */
 export function listenForLeaving(ask: AskPage): void {
@@ -47,6 +47,7 @@ async function goOn(ask: AskPage, by: HTMLElement | null): Promise<boolean> {
 	else if (step) tellOf(form, step);
 	// A form that a script submits leaves out the button.
 	if (by instanceof HTMLButtonElement && by.name !== "") setHidden(form, by.name, [by.value]);
+	stopSending();
 	form.submit();
 	return true;
 }

@@ -78,6 +78,27 @@ export async function whyNot(response: Response | null | undefined): Promise<"re
 	}
 }
 
+/** Milliseconds after which an answer of the server is not waited for any more. */
+const patience = 20_000;
+const leaving = new AbortController();
+
+/**
+ * The form's own post is about to carry all that the page was sending: what is under way is waited for no longer, since the
+ * server would refuse it as older than what it has by then.
+ */
+export function stopSending(): void {
+	leaving.abort();
+}
+
+function untilLeaving(): AbortSignal {
+	const ends = new AbortController();
+	const end = () => ends.abort();
+	if (leaving.signal.aborted) end();
+	leaving.signal.addEventListener("abort", end, { once: true });
+	setTimeout(end, patience);
+	return ends.signal;
+}
+
 /** @param keepalive when the page is being left, as long as what is sent is small. */
 export function postStep(
 	{ surveyId, operationId }: Pick<Held, "surveyId" | "operationId">,
@@ -94,7 +115,7 @@ export function postStep(
 		body,
 		keepalive: keepalive && String(body).length < 60_000,
 		redirect: "error",
-		signal: AbortSignal.timeout(20_000),
+		signal: keepalive ? AbortSignal.timeout(patience) : untilLeaving(),
 	});
 }
 

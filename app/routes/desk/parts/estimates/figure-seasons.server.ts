@@ -19,7 +19,8 @@ type Told = { value: number; standardError: number };
 export type FigureSeasons = {
 	earlier: { surveyId: string; season: number; figure: Told | null }[];
 	/** From the last season, where it asked the same; differences of days are told by the mean alone. */
-	change: (Pick<CellChange, "missing" | "respondents"> & { since: number; difference: Told | null }) | null;
+	change:
+		(Pick<CellChange, "missing" | "respondents" | "interval"> & { since: number; difference: number | null }) | null;
 	/** Beside the mean of up to five earlier seasons. */
 	usual: SeasonsComparison | null;
 };
@@ -116,17 +117,12 @@ async function changeSince(trx: Trx, before: DraftInputs, now: DraftInputs, plac
 		now: second.inside,
 		both: pairsOfArea(both.pairs, isInside),
 	});
-	const { change, missing, respondents } = changeOfCell(measure.kind, strata);
-	const { difference } = change;
+	const { change, missing, respondents, interval } = changeOfCell(measure.kind, strata);
+	const scaled = (value: number) => value * measure.scale;
 	return {
 		missing,
 		respondents,
-		difference:
-			difference === null || difference.standardError === null
-				? null
-				: {
-						value: difference.value * measure.scale,
-						standardError: difference.standardError * measure.scale,
-					},
+		difference: change.difference && scaled(change.difference.value),
+		interval: interval && { lower: scaled(interval.lower), upper: scaled(interval.upper) },
 	};
 }

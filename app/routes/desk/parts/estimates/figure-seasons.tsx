@@ -16,14 +16,11 @@ type FigureSeasonsProps = {
 export function FigureSeasonsPart({ seasons: { earlier, change, usual }, measure, place }: FigureSeasonsProps) {
 	const { t } = useTranslation("release");
 	const format = useFormat();
-	/** A difference with the interval around it, away from or towards the figure that it is of. */
-	const apart = ({ value, standardError }: { value: number; standardError: number }) => {
-		const half = 1.959963984540054 * standardError;
-		return {
-			direction: t(value >= 0 ? "seasons.more" : "seasons.less", { amount: format.spread(Math.abs(value), measure) }),
-			error: format.spread(half, measure),
-		};
-	};
+	/** A difference in words, with half of its interval. */
+	const apart = (value: number, { lower, upper }: { lower: number; upper: number }) => ({
+		direction: t(value >= 0 ? "seasons.more" : "seasons.less", { amount: format.spread(Math.abs(value), measure) }),
+		error: format.spread((upper - lower) / 2, measure),
+	});
 	return (
 		<Section title={t("seasons.title")}>
 			{earlier.length === 0 ? (
@@ -32,10 +29,10 @@ export function FigureSeasonsPart({ seasons: { earlier, change, usual }, measure
 				<>
 					{change && (
 						<p className="mb-3 max-w-prose">
-							{change.difference
+							{change.difference !== null && change.interval
 								? t("seasons.change", {
 										since: String(change.since),
-										...apart(change.difference),
+										...apart(change.difference, change.interval),
 										both: format.number(change.respondents.both),
 									})
 								: t("seasons.noChange", { since: String(change.since) })}
@@ -47,7 +44,7 @@ export function FigureSeasonsPart({ seasons: { earlier, change, usual }, measure
 								count: usual.mean.seasons,
 								seasons: format.number(usual.mean.seasons),
 								mean: format.figure(usual.mean.value, measure),
-								...apart(usual.difference),
+								...apart(usual.difference.value, usual.interval),
 							})}
 						</p>
 					)}
