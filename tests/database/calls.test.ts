@@ -1,5 +1,4 @@
-import type { Client } from "pg";
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { countDueCalls, findCall, listCalls } from "#app/collect/calls.server.ts";
 import { CallQuery, ContactForm } from "#app/collect/contacts.schema.ts";
@@ -7,38 +6,9 @@ import { listContacts, noteContact } from "#app/collect/contacts.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import { readCallWorth } from "#app/routes/desk/parts/calls/call-worth.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
-import {
-	addOperation,
-	addPerson,
-	answerFor,
-	asDesk,
-	connectOwner,
-	count,
-	draftOf,
-	loadPlaces,
-	useDatabase,
-} from "./surveys-fixture.ts";
+import { addOperation, answerFor, asDesk, count, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let wisconsin: Associate;
-let both: Associate;
-
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
-	both = await addPerson(owner, "Associate of both", ["19", "55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
+const { owner, iowa, wisconsin, both } = await openSurveysDatabase();
 
 /** A survey of its own: whoever was there before has left. */
 async function ask(operations: { name: string; state?: "19" | "55"; county?: string; trees?: number }[]) {

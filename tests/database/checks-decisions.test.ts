@@ -1,5 +1,4 @@
-import type { Client } from "pg";
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { FindingsQuery } from "#app/review/findings.schema.ts";
 import { countOpenFindings, listFindings } from "#app/review/findings.server.ts";
@@ -8,30 +7,11 @@ import { takeDecision } from "#app/routes/desk/parts/checks/take-decision.server
 import { viewFinding } from "#app/routes/desk/parts/checks/finding-view.server.ts";
 import { listTallies, rebuildTallies } from "#app/tally/tally.server.ts";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
 import { answer, check, factOf, type FindingRow, findingsOf, oddSurvey } from "./checks-fixture.ts";
-import { addPerson, asDesk, connectOwner, count, loadPlaces, useDatabase } from "./surveys-fixture.ts";
+import { asDesk, count, openSurveysDatabase } from "./surveys-fixture.ts";
 import { expectSameTallies } from "./tally-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let other: Associate;
-let wisconsin: Associate;
-
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	other = await addPerson(owner, "Iowa's other associate", ["19"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
+const { owner, iowa, other, wisconsin } = await openSurveysDatabase();
 
 const decide = (viewer: Associate, surveyId: string, { edit_finding_id: findingId }: FindingRow, closing: Closing) =>
 	asDesk(viewer, (trx) => decideFinding(trx, viewer, { surveyId, findingId }, closing));

@@ -1,42 +1,13 @@
-import type { Client } from "pg";
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { giveCode, readCoding } from "#app/routes/desk/parts/checks/coding.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
 import { askGrower, beginAnswering, growerOf, pounds, stepKeysOf, submit, typeStep } from "./answering-fixture.ts";
 import { factOf } from "./checks-fixture.ts";
-import {
-	addOperation,
-	addPerson,
-	asDesk,
-	connectOwner,
-	count,
-	draftOf,
-	loadPlaces,
-	useDatabase,
-} from "./surveys-fixture.ts";
+import { addOperation, asDesk, count, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let other: Associate;
-let wisconsin: Associate;
-
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	other = await addPerson(owner, "Iowa's other associate", ["19"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
+const { owner, iowa, other, wisconsin } = await openSurveysDatabase();
 
 /** A grower who lost a thousand of four thousand pounds, six tenths of it to something else. */
 async function lostToOther(words: string) {

@@ -1,5 +1,4 @@
-import type { Client } from "pg";
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { CountQuery, FrameQuery } from "#app/collect/desk-lists.schema.ts";
 import { listFrame } from "#app/collect/frame-list.server.ts";
@@ -7,39 +6,17 @@ import { listCountyCounts } from "#app/collect/response-counts.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import { listReleaseWork } from "#app/release/release-work.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
 import {
 	addOperation,
-	addPerson,
 	answerFor,
 	asDesk,
-	connectOwner,
 	count,
 	draftOf,
-	loadPlaces,
+	openSurveysDatabase,
 	type NewOperation,
-	useDatabase,
 } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let wisconsin: Associate;
-let both: Associate;
-
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
-	both = await addPerson(owner, "Associate of both", ["19", "55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
+const { owner, iowa, wisconsin, both } = await openSurveysDatabase();
 
 /** Opens a survey of both states over operations of its own: those of other tests grow no such crop. */
 async function surveyOf(operations: NewOperation[], countyOf: (i: number) => string | null = () => null) {

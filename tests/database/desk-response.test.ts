@@ -1,5 +1,4 @@
-import type { Client } from "pg";
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { Answer } from "#app/collect/form.ts";
 import { sendNewLink } from "#app/collect/new-link.server.ts";
@@ -10,38 +9,9 @@ import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import { findOperation } from "#app/directory/operations.server.ts";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
-import {
-	addOperation,
-	addPerson,
-	answerFor,
-	asDesk,
-	connectOwner,
-	count,
-	draftOf,
-	loadPlaces,
-	useDatabase,
-} from "./surveys-fixture.ts";
+import { addOperation, answerFor, asDesk, count, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let wisconsin: Associate;
-let both: Associate;
-
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
-	both = await addPerson(owner, "Associate of both", ["19", "55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
+const { owner, iowa, wisconsin, both } = await openSurveysDatabase();
 
 async function openFor(operation: Parameters<typeof addOperation>[1]) {
 	const operationId = await addOperation(owner, operation);

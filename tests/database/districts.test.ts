@@ -1,28 +1,11 @@
 import { sql } from "kysely";
-import type { Client } from "pg";
-import { afterAll, beforeAll, beforeEach, expect, test } from "vitest";
+import { beforeEach, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { findStateDistricts, redrawDistricts, undoRedrawing } from "#app/directory/districts.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
-import { addPerson, asDesk, connectOwner, loadPlaces, useDatabase } from "./surveys-fixture.ts";
+import { asDesk, openSurveysDatabase } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let wisconsin: Associate;
+const { owner, iowa, wisconsin } = await openSurveysDatabase();
 
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
 beforeEach(async () => {
 	await owner.query("update directory.county set district_key = null where state_fips = '19'");
 	await owner.query("delete from directory.district where state_fips = '19'");

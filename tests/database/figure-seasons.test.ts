@@ -1,5 +1,4 @@
-import type { Client } from "pg";
-import { afterAll, beforeAll, expect, test } from "vitest";
+import { beforeAll, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
@@ -7,13 +6,9 @@ import { normal975 } from "#app/estimate/distributions.ts";
 import { type PairedAnswers, pairedMomentsOf } from "#app/lib/paired-moments.ts";
 import { findFigureOrigin } from "#app/routes/desk/parts/estimates/figure-origin.server.ts";
 import { pairsOfArea, readBothSeasons } from "#app/tally/both-seasons.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
-import { addOperation, addPerson, asDesk, connectOwner, draftOf, loadPlaces, useDatabase } from "./surveys-fixture.ts";
+import { addOperation, asDesk, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let wisconsin: Associate;
+const { owner, iowa, wisconsin } = await openSurveysDatabase();
 let operations: string[];
 let before: string;
 let now: string;
@@ -42,12 +37,6 @@ async function ask(season: 0 | 1): Promise<string> {
 }
 
 beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
 	operations = [];
 	for (let i = 0; i < size; i++) {
 		const operationId = await addOperation(owner, { state: "19", trees: i % 3 === 0 ? 2000 : 40 });
@@ -60,10 +49,6 @@ beforeAll(async () => {
 	await owner.query("update directory.planting set bearing_trees = 2000 where operation_id = $1", [operations[1]]);
 	await owner.query("update directory.operation set county_fips = '19103' where operation_id = $1", [operations[2]]);
 	now = await ask(1);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
 });
 
 const read = (viewer: Associate) =>

@@ -1,4 +1,4 @@
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { describe, expect, test } from "vitest";
 import { type Scope, scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { findQuestion, type FormDraft } from "#app/collect/editing/draft.ts";
@@ -9,38 +9,10 @@ import { listVersions, moveSurvey, publishForm, resetDraft } from "#app/collect/
 import { findSurveyForm } from "#app/collect/forms.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
 import { change, find, makeForm, publish, title } from "./forms-editor-fixture.ts";
-import {
-	addOperation,
-	addPerson,
-	asDesk,
-	connectOwner,
-	count,
-	draftOf,
-	loadPlaces,
-	useDatabase,
-} from "./surveys-fixture.ts";
+import { addOperation, asDesk, count, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Awaited<ReturnType<typeof connectOwner>>;
-let iowa: Associate;
-let colleague: Associate;
-let wisconsin: Associate;
-
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	colleague = await addPerson(owner, "Iowa's other associate", ["19"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
+const { owner, iowa, other: colleague, wisconsin } = await openSurveysDatabase();
 
 const spotIn = (draft: FormDraft) => ({ screen: draft.screens[0]!.key });
 

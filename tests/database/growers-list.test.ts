@@ -1,5 +1,4 @@
-import type { Client } from "pg";
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { answeredCondition, listLastAnswers } from "#app/collect/last-answers.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
@@ -11,36 +10,9 @@ import { fileHeader, listFileRows } from "#app/directory/grower-file.server.ts";
 import { toCsv } from "#app/publish/data-file.ts";
 import { actOnGrowers } from "#app/routes/desk/parts/growers/bulk-steps.server.ts";
 import { listChosen, readChoice } from "#app/routes/desk/parts/growers/chosen.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
-import {
-	addOperation,
-	addPerson,
-	answerFor,
-	asDesk,
-	connectOwner,
-	count,
-	draftOf,
-	loadPlaces,
-	useDatabase,
-} from "./surveys-fixture.ts";
+import { addOperation, addPerson, answerFor, asDesk, count, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let both: Associate;
-
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	both = await addPerson(owner, "Associate of both", ["19", "55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
+const { owner, iowa, both } = await openSurveysDatabase();
 
 const list = (viewer: Associate, parts: Record<string, unknown>) => {
 	const query = OperationQuery.parse(parts);

@@ -1,5 +1,4 @@
-import type { Client } from "pg";
-import { afterAll, beforeAll, expect, test } from "vitest";
+import { expect, test } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import type { Brief } from "#app/collect/brief.ts";
@@ -14,29 +13,10 @@ import { approveDraft } from "#app/release/approval.server.ts";
 import { createDraft } from "#app/release/drafts.server.ts";
 import { publishRelease } from "#app/release/publish.server.ts";
 import { readPlanKept } from "#app/routes/desk/parts/brief/plan-kept.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
 import { addAnsweredSurvey } from "./answered-survey-fixture.ts";
-import { addPerson, asDesk, connectOwner, draftOf, loadPlaces, useDatabase } from "./surveys-fixture.ts";
+import { asDesk, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let both: Associate;
-let wisconsin: Associate;
-
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	both = await addPerson(owner, "Associate of two states", ["19", "55"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
+const { owner, iowa, both, wisconsin } = await openSurveysDatabase();
 
 const planned = { measureKey: "crop_loss", cropKey: "apple", level: "county", smallestN: 7, largestCv: 0.3 } as const;
 const brief: Brief = {

@@ -1,8 +1,10 @@
 import { Client } from "pg";
+import { afterAll } from "vitest";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { SurveyDraft } from "#app/collect/survey-draft.schema.ts";
+import { createTestDatabase } from "#tests/helpers/database.ts";
 
 /** Points the application's settings at a test's own database; read once a process, so before anything else. */
 export function useDatabase(urls: { appUrl: string; readerUrl: string }, more: Record<string, string> = {}): void {
@@ -43,6 +45,25 @@ export async function addPerson(owner: Client, name: string, stateFips: string[]
 		[name],
 	);
 	return { role: "associate", personId: rows[0].person_id, displayName: name, email: null, language: null, stateFips };
+}
+
+/** A database of the test file's own with two states and their associates, until the file's last test has run. */
+export async function openSurveysDatabase() {
+	const database = await createTestDatabase();
+	useDatabase(database);
+	const owner = await connectOwner(database.ownerUrl);
+	afterAll(async () => {
+		await owner.end();
+		await database.drop();
+	});
+	await loadPlaces(owner);
+	return {
+		owner,
+		iowa: await addPerson(owner, "Iowa's associate", ["19"]),
+		other: await addPerson(owner, "Iowa's other associate", ["19"]),
+		wisconsin: await addPerson(owner, "Wisconsin's associate", ["55"]),
+		both: await addPerson(owner, "Associate of both", ["19", "55"]),
+	};
 }
 
 export type NewOperation = {

@@ -1,39 +1,10 @@
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
-import type { Client } from "pg";
+import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { closeSurvey, extendSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey, findSurvey, listSurveys } from "#app/collect/surveys.server.ts";
-import { createTestDatabase } from "#tests/helpers/database.ts";
-import {
-	addOperation,
-	addPerson,
-	asDesk,
-	connectOwner,
-	count,
-	draftOf,
-	loadPlaces,
-	useDatabase,
-} from "./surveys-fixture.ts";
+import { addOperation, asDesk, count, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
-let database: Awaited<ReturnType<typeof createTestDatabase>>;
-let owner: Client;
-let iowa: Associate;
-let wisconsin: Associate;
-let both: Associate;
-
-beforeAll(async () => {
-	database = await createTestDatabase();
-	useDatabase(database);
-	owner = await connectOwner(database.ownerUrl);
-	await loadPlaces(owner);
-	iowa = await addPerson(owner, "Iowa's associate", ["19"]);
-	wisconsin = await addPerson(owner, "Wisconsin's associate", ["55"]);
-	both = await addPerson(owner, "Associate of both", ["19", "55"]);
-});
-afterAll(async () => {
-	await owner.end();
-	await database.drop();
-});
+const { owner, iowa, wisconsin, both } = await openSurveysDatabase();
 
 async function create(viewer: Associate, states: string[], more = {}): Promise<string> {
 	const made = await asDesk(viewer, (trx) => createSurvey(trx, viewer, draftOf(states, more)));
