@@ -3,6 +3,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { CallQuery, ContactOutcome } from "./contacts.schema.ts";
 import type { Disposition } from "./frame-list.server.ts";
+import { isWaitedFor } from "./waited-for.server.ts";
 
 const pageSize = 50;
 
@@ -64,10 +65,6 @@ export type CallRow = {
 
 const today = sql`(now() at time zone z.time_zone)::date`;
 const isDue = sql<boolean>`coalesce(c.next_on <= ${today}, false)`;
-/** Those who were asked, have sent nothing in and have not said that they will not. */
-const isWaitedFor = sql`f.disposition in ('not_reached', 'undeliverable', 'reached', 'partial') and o.status = 'active'
-	and not exists (select from collect.response r where r.survey_id = f.survey_id and r.operation_id = f.operation_id
-		and (r.submitted_at is not null or r.late_at is not null or r.withdrawn_at is not null))`;
 const shown = {
 	all: sql`true`,
 	to_call: sql`(c.next_on is null or c.next_on <= ${today})`,

@@ -5,6 +5,7 @@ import { listPlantingsAsked } from "./answer-rows.server.ts";
 import { findSurveyForm } from "./forms.server.ts";
 import type { PaperQuery } from "./paper-forms.schema.ts";
 import { findSurvey, isId } from "./surveys.server.ts";
+import { isWaitedFor } from "./waited-for.server.ts";
 
 /** As many forms as a page of the list holds: each is a sheet or two. */
 const pageSize = 50;
@@ -25,7 +26,7 @@ export async function listPaperForms(
 	if (!definition || (operationId !== undefined && !isId(operationId))) return undefined;
 	const matching = selectForms(trx, viewer, surveyId)
 		.$if(operationId !== undefined, (rows) => rows.where("f.operation_id", "=", operationId!))
-		.$if(operationId === undefined, (rows) => rows.where(waits))
+		.$if(operationId === undefined, (rows) => rows.where(isWaitedFor))
 		.$if(operationId === undefined && query.state !== "all", (rows) => rows.where("f.state_fips", "=", query.state))
 		.$if(operationId === undefined && query.show === "no_address", (rows) =>
 			rows.where(sql<boolean>`coalesce(o.email, '') = ''`),
@@ -53,11 +54,6 @@ export async function listPaperForms(
 }
 export type PaperForms = NonNullable<Awaited<ReturnType<typeof listPaperForms>>>;
 export type PaperForm = PaperForms["forms"][number];
-
-/** Nothing came in, and nobody said that nothing will. */
-const waits = sql<boolean>`f.disposition in ('not_reached', 'undeliverable', 'reached', 'partial')
-	and not exists (select from collect.response r where r.survey_id = f.survey_id and r.operation_id = f.operation_id
-		and (r.submitted_at is not null or r.late_at is not null or r.withdrawn_at is not null))`;
 
 function selectForms(trx: Trx, viewer: Associate, surveyId: string) {
 	return trx
