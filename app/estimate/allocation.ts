@@ -11,6 +11,8 @@ export type Gain = {
 	standardErrorAfter: number;
 	/** The reduction that one attempt can be expected to bring: times the stratum's response rate. */
 	perAttempt: number;
+	/** The s² of the residuals, in units of the figure squared: the variance of what one operation adds to its error. */
+	residualVariance: number;
 	/** The stratum has one respondent, and its spread was taken from the others'. */
 	borrowed: boolean;
 };
@@ -43,7 +45,7 @@ export function gainsOfOneMore(
 		const open = samplingFraction === 1 ? 0 : 1;
 		const reduction = (open * weight ** 2 * own * respondents) / (respondents + 1);
 		const standardErrorAfter = Math.sqrt(Math.max(0, variance - reduction));
-		return { reduction, standardErrorAfter, perAttempt: responseRate * reduction, borrowed };
+		return { reduction, standardErrorAfter, perAttempt: responseRate * reduction, residualVariance: own, borrowed };
 	});
 	return { figure: { value: linearized.value, standardError: Math.sqrt(variance) }, gains };
 }

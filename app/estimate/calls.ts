@@ -35,11 +35,7 @@ export function spreadByStratum(
 	const found = gainsOfOneMore(kind, strata);
 	if (!found) return null;
 	return new Map(
-		strata.flatMap(({ stratumKeys, weight, respondents: n }, i) => {
-			// The gain is N² s² / (n (n + 1)).
-			const spread = (found.gains[i]!.reduction * n * (n + 1)) / (weight * n) ** 2;
-			return stratumKeys.map((key) => [key, spread] as const);
-		}),
+		strata.flatMap(({ stratumKeys }, i) => stratumKeys.map((key) => [key, found.gains[i]!.residualVariance] as const)),
 	);
 }
 

@@ -17,12 +17,13 @@ export type Outcomes = {
 	notEligible: number;
 };
 
+export const rateKeys = ["rr1", "rr2", "rr3", "rr4", "rr5", "rr6"] as const;
 /**
  * Fractions from 0 to 1; null where a rate's base is empty. `rr1`, `rr3`, `rr5` count complete answers, `rr2`, `rr4`, `rr6`
  * partial ones too. The first two take every unit of unknown eligibility for eligible, the last two none; between them
  * stand those that take the share `eligibleShare`, which must be told with its basis wherever they are shown.
  */
-export type ResponseRates = Record<"rr1" | "rr2" | "rr3" | "rr4" | "rr5" | "rr6" | "eligibleShare", number | null>;
+export type ResponseRates = Record<(typeof rateKeys)[number] | "eligibleShare", number | null>;
 
 const noOutcomes: Outcomes = Object.freeze({
 	complete: 0,

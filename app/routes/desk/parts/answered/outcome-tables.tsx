@@ -1,10 +1,8 @@
 import { useTranslation } from "react-i18next";
 import { DataTable } from "#app/components/data-table.tsx";
+import { outcomeOf, rateKeys } from "#app/estimate/response-rate.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { outcomeOf } from "#app/estimate/response-rate.ts";
 import type { ToldRates } from "./response-rates.server.ts";
-
-const rates = ["rr1", "rr2", "rr3", "rr4", "rr5", "rr6"] as const;
 
 /** The one disposition of each operation, what it counts as, and the six rates that follow, in full words. */
 export function OutcomeTables({ rates: { dispositions, whole } }: { rates: ToldRates }) {
@@ -43,7 +41,7 @@ export function OutcomeTables({ rates: { dispositions, whole } }: { rates: ToldR
 			<div className="mt-6">
 				<DataTable
 					caption={t("release:origin.response.rates")}
-					rows={[...rates]}
+					rows={[...rateKeys]}
 					rowKey={(key) => key}
 					columns={[
 						{

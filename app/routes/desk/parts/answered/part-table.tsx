@@ -1,9 +1,8 @@
 import { useTranslation } from "react-i18next";
 import { DataTable } from "#app/components/data-table.tsx";
+import { rateKeys } from "#app/estimate/response-rate.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { RatePart, ToldRates } from "./response-rates.server.ts";
-
-const rates = ["rr1", "rr2", "rr3", "rr4", "rr5", "rr6"] as const;
 
 /** Each state, district or stratum with its response rates, and how the same part stood at the end a season before. */
 export function PartTable({ rates: { parts, query, earlier } }: { rates: ToldRates }) {
@@ -26,7 +25,7 @@ export function PartTable({ rates: { parts, query, earlier } }: { rates: ToldRat
 					numeric: true,
 					cell: (part: RatePart) => format.number(part[of][query.weigh]),
 				})),
-				...rates.map((rate) => ({
+				...rateKeys.map((rate) => ({
 					key: rate,
 					header: rate.toUpperCase(),
 					numeric: true,

@@ -2,10 +2,9 @@ import { useTranslation } from "react-i18next";
 import { DataTable } from "#app/components/data-table.tsx";
 import { DescriptionList } from "#app/components/description-list.tsx";
 import { Section } from "#app/components/section.tsx";
+import { rateKeys } from "#app/estimate/response-rate.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { ToldFigure } from "./figure-origin.server.ts";
-
-const rates = ["rr1", "rr2", "rr3", "rr4", "rr5", "rr6"] as const;
 
 /** Who of the area's growers of the crop answered, and who of them this question. */
 export function FigureResponse({ told: { dispositions, response, origin } }: { told: ToldFigure }) {
@@ -55,7 +54,7 @@ export function FigureResponse({ told: { dispositions, response, origin } }: { t
 				{dispositions.length > 0 && (
 					<DataTable
 						caption={t("origin.response.rates")}
-						rows={[...rates]}
+						rows={[...rateKeys]}
 						rowKey={(key) => key}
 						columns={[
 							{ key: "rate", header: t("origin.response.rate"), cell: (key) => t(`origin.response.${key}`) },
