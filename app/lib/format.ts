@@ -6,7 +6,7 @@ export type Unit =
 	| ("percent" | "percent_of_normal" | "lb_per_tree" | "lb" | "trees" | "operations" | "score")
 	| ("kg" | "tons" | "bushels" | "half_bushels" | "pecks" | "dry_quarts" | "crates")
 	| ("acres" | "hectares" | "fahrenheit" | "celsius" | "row_feet" | "row_meters" | "tree" | "bush")
-	| ("count" | "days");
+	| ("count" | "days" | "points");
 /** The unit of a measure; `day` is a day of the year, which is told as a date. */
 export type MeasureUnit = Unit | "day";
 /** How a measure's figures are told. The season is the year whose dates its days are. */
@@ -59,6 +59,9 @@ export function formatterFor(language: string, t: TFunction) {
 		/** How far a value can be off, a digit finer than the value itself: plain, or in days. */
 		spread: (value: number, { unit, decimals }: FigureShape) =>
 			unit === "day" ? quantity(value, "days", 1) : number(value, decimals + 1),
+		/** How far two values of a measure are apart, whichever is larger: shares are points apart, and dates are days. */
+		distance: (value: number, { unit, decimals }: Pick<FigureShape, "unit" | "decimals">) =>
+			quantity(Math.abs(value), distanceUnit(unit), decimals),
 		/** A stored day (2026-05-04, no time zone) with the month in words. */
 		day: (value: string) =>
 			date(`${value}T12:00:00Z`, { day: "numeric", month: "long", year: "numeric", timeZone: "UTC" }),
@@ -88,6 +91,11 @@ export function formatterFor(language: string, t: TFunction) {
 	};
 }
 export type Formatter = ReturnType<typeof formatterFor>;
+
+function distanceUnit(unit: MeasureUnit): Unit {
+	if (unit === "day") return "days";
+	return unit === "percent" || unit === "percent_of_normal" ? "points" : unit;
+}
 
 /** As many decimals as a number has, up to three: what somebody typed is told as typed. */
 export function decimalsOf(value: number): number {

@@ -121,18 +121,13 @@ function SeasonFigure({ cell, measure }: { cell: MapCell | null; measure: Releas
 }
 
 /** A change in words that also say its direction: a sign alone is easily missed. */
-function useChangeWords({ unit, decimals }: ReleaseMeasure) {
+function useChangeWords(measure: ReleaseMeasure) {
 	const { t } = useTranslation("public");
 	const format = useFormat();
 	return (change: number): string => {
 		if (change === 0) return t("map.two.same");
-		const size = Math.abs(change);
-		if (unit === "day")
-			return t(`map.two.${change > 0 ? "later" : "earlier"}`, { by: format.quantity(size, "days", decimals) });
-		const by =
-			unit === "percent" || unit === "percent_of_normal"
-				? t("map.two.points", { count: size, value: format.number(size, decimals) })
-				: format.quantity(size, unit, decimals);
+		const by = format.distance(change, measure);
+		if (measure.unit === "day") return t(`map.two.${change > 0 ? "later" : "earlier"}`, { by });
 		return t(`map.two.${change > 0 ? "up" : "down"}`, { by });
 	};
 }

@@ -16,10 +16,13 @@ type FigureSeasonsProps = {
 export function FigureSeasonsPart({ seasons: { earlier, change, usual }, measure, place }: FigureSeasonsProps) {
 	const { t } = useTranslation("release");
 	const format = useFormat();
+	// A digit finer than the figure, as its standard error is.
+	const distance = (value: number) => format.distance(value, { ...measure, decimals: measure.decimals + 1 });
+	const [more, less] = measure.unit === "day" ? (["later", "earlier"] as const) : (["more", "less"] as const);
 	/** A difference in words, with half of its interval. */
 	const apart = (value: number, { lower, upper }: { lower: number; upper: number }) => ({
-		direction: t(value >= 0 ? "seasons.more" : "seasons.less", { amount: format.spread(Math.abs(value), measure) }),
-		error: format.spread((upper - lower) / 2, measure),
+		direction: t(`seasons.${value >= 0 ? more : less}`, { amount: distance(value) }),
+		error: distance((upper - lower) / 2),
 	});
 	return (
 		<Section title={t("seasons.title")}>
