@@ -32,7 +32,7 @@ export function DataTable<Row>({ caption, columns, rows, rowKey, sort, empty, ca
 			// Scrolled by keyboard only while in focus.
 			// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex
 			tabIndex={0}
-			className="max-h-[80vh] overflow-auto border-y-2 border-line print:max-h-none print:overflow-visible"
+			className="relative max-h-[80vh] overflow-auto border-y-2 border-line print:max-h-none print:overflow-visible"
 		>
 			<table className="w-full border-collapse text-sm">
 				<caption
