@@ -100,12 +100,14 @@ export default function BriefPage({ loaderData, actionData }: Route.ComponentPro
 					labelOf={new Map(measures.map(({ key, label }) => [key, label]))}
 				/>
 			)}
-			<Form key={brief.version} method="post" noValidate className="max-w-3xl">
+			<Form key={brief.version} method="post" noValidate>
 				{/* After somebody else's change the next press is meant to go over it. */}
 				<input type="hidden" name="version" value={brief.version} />
-				<TextField {...text("why", 2000)} multiline rows={3} />
-				<TextField {...text("askedBy", 300)} />
-				<TextField {...text("decision", 2000)} multiline rows={3} />
+				<div className="max-w-3xl">
+					<TextField {...text("why", 2000)} multiline rows={3} />
+					<TextField {...text("askedBy", 300)} size="full" />
+					<TextField {...text("decision", 2000)} multiline rows={3} />
+				</div>
 				<Section title={t("brief.plannedTitle")}>
 					<p className="mb-4 max-w-prose">{t("brief.plannedLead")}</p>
 					<PlannedFields
