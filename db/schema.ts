@@ -299,6 +299,7 @@ export interface CollectReleaseDraft {
   method: Json | null;
   progress: Json | null;
   publish_at: Timestamp | null;
+  published_checksum: string | null;
   release_draft_id: Generated<string>;
   release_id: string | null;
   revises: string | null;

@@ -6,8 +6,8 @@ import { protect, type Protection, type ProtectionTable, type ProtectOptions } f
 import { protectInThread } from "#app/protect/protect-thread.server.ts";
 import { guardRevision } from "#app/protect/revision.ts";
 import { surveyTable } from "#app/protect/survey-table.ts";
+import { draftChecksum, publishedChecksum } from "#app/release/checksums.server.ts";
 import { type DraftCell, ReleaseAudit, type ReleaseMethod } from "#app/release/draft.ts";
-import { draftChecksum } from "#app/release/publish.server.ts";
 import { assembleCells } from "./assemble-cells.ts";
 import { keepBasis } from "./draft-basis.server.ts";
 import { type DraftInputs, readInputs } from "./draft-inputs.server.ts";
@@ -127,6 +127,7 @@ async function writeDraft(
 			method: JSON.stringify(method),
 			audit: JSON.stringify(audit),
 			checksum: draftChecksum(cells),
+			published_checksum: publishedChecksum(method, cells),
 			computed_at: new Date(),
 		})
 		.where("release_draft_id", "=", releaseDraftId)

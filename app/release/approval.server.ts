@@ -1,9 +1,10 @@
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Coordinator } from "#app/auth/viewer.ts";
 import type { Words } from "#app/lib/words.ts";
-import { ReleaseAudit } from "./draft.ts";
+import { isAsAudited } from "./checksums.server.ts";
+import { ReleaseAudit, ReleaseMethod } from "./draft.ts";
 import { listDraftCells } from "./drafts.server.ts";
-import { draftChecksum, lockDraft } from "./publish.server.ts";
+import { lockDraft } from "./publish.server.ts";
 
 export type Approved = { outcome: "scheduled" | "not_found" | "not_waiting" | "own_draft" | "changed" };
 
@@ -21,8 +22,9 @@ export async function approveDraft(
 	if (!draft) return { outcome: "not_found" };
 	if (draft.status !== "audited") return { outcome: "not_waiting" };
 	if (draft.drafted_by === viewer.personId) return { outcome: "own_draft" };
-	const checksum = draftChecksum(await listDraftCells(trx, releaseDraftId));
-	if (!ReleaseAudit.parse(draft.audit).passed || checksum !== draft.checksum) return { outcome: "changed" };
+	const cells = await listDraftCells(trx, releaseDraftId);
+	const passed = ReleaseAudit.parse(draft.audit).passed;
+	if (!passed || !isAsAudited(draft, ReleaseMethod.parse(draft.method), cells)) return { outcome: "changed" };
 	await trx
 		.updateTable("collect.release_draft")
 		.set({ status: "scheduled", decided_by: viewer.personId, decided_at: new Date(), publish_at: publishAt })

@@ -1,15 +1,9 @@
-import { createHash } from "node:crypto";
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
-import {
-	type DraftCell,
-	publishedFigure,
-	ReleaseAudit,
-	ReleaseMethod,
-	ReleaseRules,
-	respondentsBand,
-} from "./draft.ts";
+import { isAsAudited, publishedChecksum } from "./checksums.server.ts";
+import { type DraftCell, ReleaseAudit, ReleaseMethod, ReleaseRules } from "./draft.ts";
 import { listDraftCells } from "./drafts.server.ts";
+import { publishedAudit, publishedMethod, publishedRows } from "./published-rows.ts";
 
 export type Published = { outcome: "published"; releaseId: string; number: number };
 export type NotPublished = { outcome: "not_found" | "not_waiting" | "not_yet" | "changed" };
@@ -28,10 +22,10 @@ export async function publishRelease(
 	if (draft.status !== "scheduled" || !draft.publish_at) return { outcome: "not_waiting" };
 	if (draft.publish_at > new Date()) return { outcome: "not_yet" };
 	const cells = await listDraftCells(trx, releaseDraftId);
-	if (draftChecksum(cells) !== draft.checksum) return { outcome: "changed" };
+	const method = ReleaseMethod.parse(draft.method);
+	if (!isAsAudited(draft, method, cells)) return { outcome: "changed" };
 
 	const releaseId = releaseDraftId; // one release a draft: trying twice meets the key
-	const method = ReleaseMethod.parse(draft.method);
 	const number = await insertRelease(trx, releaseId, {
 		draft,
 		method,
@@ -60,26 +54,6 @@ export function lockDraft(trx: Trx, releaseDraftId: string) {
 }
 type LockedDraft = NonNullable<Awaited<ReturnType<typeof lockDraft>>>;
 
-/** SHA-256 over the cells in a fixed order: what was audited is what is approved. */
-export function draftChecksum(cells: readonly DraftCell[]): string {
-	const ordered = cells
-		.map(({ cropKey, areaKey, status, respondents, figures }) => [
-			cropKey,
-			areaKey,
-			status,
-			respondents,
-			figures?.map(plain) ?? null,
-		])
-		.map((cell) => JSON.stringify(cell))
-		.toSorted();
-	return createHash("sha256").update(ordered.join("\n")).digest("hex");
-}
-
-// jsonb gives an object's keys back in an order of its own.
-function plain(figure: object): unknown[] {
-	return Object.entries(figure).toSorted(([a], [b]) => (a < b ? -1 : 1));
-}
-
 async function insertRelease(
 	trx: Trx,
 	releaseId: string,
@@ -94,7 +68,7 @@ async function insertRelease(
 	},
 ): Promise<number> {
 	const { draft, method, audit, rules, cells, codeVersion, publishedAt } = made;
-	const { measures, areas, ...told } = method;
+	const { measures, areas } = method;
 	const row = await trx
 		.insertInto("release.release")
 		.values({
@@ -108,10 +82,10 @@ async function insertRelease(
 			title: JSON.stringify(method.title),
 			published_at: publishedAt,
 			rules: JSON.stringify(rules),
-			method: JSON.stringify(told),
-			audit: JSON.stringify({ ...audit, failures: undefined }),
+			method: JSON.stringify(publishedMethod(method, cells)),
+			audit: JSON.stringify(publishedAudit(audit)),
 			code_version: codeVersion,
-			checksum: draftChecksum(cells),
+			checksum: publishedChecksum(method, cells),
 		})
 		.returning("number")
 		.executeTakeFirstOrThrow();
@@ -158,31 +132,7 @@ async function nextEdition(trx: Trx, revises: string): Promise<number> {
 }
 
 async function insertCells(trx: Trx, releaseId: string, method: ReleaseMethod, cells: DraftCell[]): Promise<void> {
-	const decimalsOf = new Map(method.measures.map((measure) => [measure.key, measure.decimals]));
-	const cellRows = cells.map((cell) => ({
-		crop_key: cell.cropKey,
-		area_key: cell.areaKey,
-		status: cell.status,
-		respondents_band: cell.respondents === null ? null : respondentsBand(cell.respondents),
-	}));
-	const figureRows = cells.flatMap((cell) =>
-		(cell.figures ?? []).map((drafted) => {
-			const figure = publishedFigure(drafted, decimalsOf.get(drafted.measureKey) ?? 0);
-			return {
-				measure_key: figure.measureKey,
-				crop_key: cell.cropKey,
-				area_key: cell.areaKey,
-				value: figure.value,
-				standard_error: figure.standardError,
-				cv: figure.cv,
-				lower_bound: figure.lower,
-				upper_bound: figure.upper,
-				steadiness: figure.steadiness,
-				first_quartile: figure.quartiles?.first ?? null,
-				third_quartile: figure.quartiles?.third ?? null,
-			};
-		}),
-	);
+	const { cellRows, figureRows } = publishedRows(method, cells);
 	// One parameter a table: thousands of rows stay under the protocol's limit of bound values.
 	await sql`insert into release.cell (release_id, crop_key, area_key, status, respondents_band)
 		select ${releaseId}::uuid, * from jsonb_to_recordset(${JSON.stringify(cellRows)}::jsonb)

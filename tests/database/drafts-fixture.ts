@@ -5,6 +5,7 @@ export type NewDraft = {
 	status: string;
 	audit?: { passed: boolean } | null;
 	checksum?: string | null;
+	publishedChecksum?: string | null;
 	/** For a scheduled one, in SQL. */
 	publishAt?: string;
 };
@@ -12,7 +13,7 @@ export type NewDraft = {
 /** A draft of a release as a row of its own, with a closed survey that nobody was asked in. */
 export async function addDraft(
 	owner: Client,
-	{ status, audit = null, checksum = null, publishAt = "now()" }: NewDraft,
+	{ status, audit = null, checksum = null, publishedChecksum = null, publishAt = "now()" }: NewDraft,
 ): Promise<string> {
 	const { personId } = await addPerson(owner, "Ines Rowan", ["19"]);
 	const approver = status === "scheduled" ? (await addPerson(owner, "Marek Vance", [])).personId : null;
@@ -22,11 +23,12 @@ export async function addDraft(
 				returning form_version_id),
 			s as (insert into collect.survey (form_version_id, season, title, crop_keys, closes_at)
 				select form_version_id, 2031, '{}', '{apple}', now() from v returning survey_id)
-		insert into collect.release_draft (survey_id, status, rules, audit, checksum, drafted_by, decided_by, decided_at, publish_at)
-		select survey_id, $1, '{}', $2, $3, $4, $5::uuid, case when $5 is not null then now() end,
-			case when $5 is not null then ${publishAt} end
+		insert into collect.release_draft (survey_id, status, rules, audit, checksum, published_checksum, drafted_by,
+			decided_by, decided_at, publish_at)
+		select survey_id, $1, '{}', $2, $3, $4, $5, $6::uuid, case when $6 is not null then now() end,
+			case when $6 is not null then ${publishAt} end
 		from s returning release_draft_id`,
-		[status, audit && JSON.stringify(audit), checksum, personId, approver],
+		[status, audit && JSON.stringify(audit), checksum, publishedChecksum, personId, approver],
 	);
 	return rows[0].release_draft_id as string;
 }

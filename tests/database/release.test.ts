@@ -107,6 +107,24 @@ test("published figures are the draft's, rounded; hidden cells have none, whoeve
 	expect(region?.respondentsBand).toBe("20-49");
 });
 
+test("a release tells a sum of its own, and nothing of the draft that says why cells are withheld", async () => {
+	const { rows } = await owner.query(
+		`select r.checksum, r.method, r.audit, d.checksum as whole, d.published_checksum as published,
+			d.method -> 'joins' as joins, d.audit -> 'shields' as shields
+		from release.release r join collect.release_draft d using (release_id)`,
+	);
+	const [row] = rows;
+	expect(row.checksum).toBe(row.published);
+	expect(row.checksum).not.toBe(row.whole);
+	// The draft has them.
+	expect(row.joins).toBeInstanceOf(Array);
+	expect(row.shields).toBeGreaterThan(0);
+	expect(row.method).toMatchObject({ all: { asked: 23, answered: 23 }, states: [{ stateFips: "19", answered: 23 }] });
+	expect(row.method).not.toHaveProperty("joins");
+	expect(row.audit).toMatchObject({ passed: true });
+	for (const name of ["shields", "withheldForOwnSake", "failures"]) expect(row.audit).not.toHaveProperty(name);
+});
+
 test.each(["app", "owner"] as const)("what is published cannot be changed, as %s", async (role) => {
 	const client = role === "owner" ? owner : await connectOwner(database.appUrl);
 	try {

@@ -106,7 +106,12 @@ test("the application still logs and releases, so the refusals are not for want 
 	const events = await owner.query("select action from log.event order by event_id");
 	expect(events.rows.map(({ action }) => action)).toEqual(["survey.opened", "survey.closed"]);
 	await app.query("select set_config('tallygrove.scope', 'network', false)");
-	const draftId = await addDraft(owner, { status: "scheduled", audit: { passed: true }, checksum: "sum" });
+	const draftId = await addDraft(owner, {
+		status: "scheduled",
+		audit: { passed: true },
+		checksum: "sum",
+		publishedChecksum: "sum",
+	});
 	await app.query(
 		`insert into release.release
 			(release_id, season, form_key, title, rules, method, audit, code_version, checksum, series_id)
