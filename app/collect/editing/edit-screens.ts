@@ -26,7 +26,7 @@ export function replaceScreen(draft: FormDraft, key: string, next: Screen, held:
 	return withScreens(draft, (screen) => (screen.key === key ? [next] : [screen]));
 }
 
-/** Moves a screen by one place, or to where a list's first or last is. At its end it stays. */
+/** Moves a screen by one place; at an end of the form it stays. */
 export function moveScreen(draft: FormDraft, key: string, by: -1 | 1): FormDraft | NotMade {
 	const at = draft.screens.findIndex((screen) => screen.key === key);
 	if (at < 0) return "not_found";

@@ -5,6 +5,7 @@ import { z } from "zod";
 import type { Route } from "./+types/form-question";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { definitionOfDraft, findQuestion, type FormDraft } from "#app/collect/editing/draft.ts";
+import { removeQuestion } from "#app/collect/editing/edit-questions.ts";
 import { fingerprintOf } from "#app/collect/editing/form-drafts.server.ts";
 import {
 	fieldsOfQuestion,
@@ -35,22 +36,25 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 const Sent = Fields.extend({ intent: QuestionIntent, seen: z.string().max(40) });
 
 export async function action({ context, params, request }: Route.ActionArgs) {
-	const { desk, form } = await getOwnForm(context, params.formId);
-	const found = findQuestion(form.draft, params.key);
-	if (!found) throw refusal("form_not_found");
+	const { desk } = await getOwnForm(context, params.formId);
 	const parsed = parseForm(Sent, await request.formData());
 	// The page's own controls cannot make such a form: a forged or broken one. What is amiss in a text is told below.
 	if (!parsed.ok) throw refusal("form_not_understood");
 	const { intent, seen, ...fields } = parsed.value;
 	const language = getLanguage(context);
-	const read = readQuestionFields(fields, form.draft, params.key, language);
-	if (!read.question) return answer(null, fields, read.problems, params.key);
-
+	let problems: Problem[] = [];
 	const made = await makeChange(desk, params.formId, (draft, held) => {
 		const now = findQuestion(draft, params.key)?.question;
-		if (now && fingerprintOf(now) !== seen) return "changed_meanwhile";
-		return changeQuestion(draft, read.question, intent, held);
+		if (!now) return "not_found";
+		// Before anything typed is looked at: the page that comes back with problems shows, and has then seen, what is there now.
+		if (fingerprintOf(now) !== seen) return "changed_meanwhile";
+		// What is half typed does not keep a question from being taken away.
+		if (intent === "remove") return removeQuestion(draft, params.key, held);
+		const read = readQuestionFields(fields, draft, params.key, language);
+		problems = read.problems;
+		return read.question ? changeQuestion(draft, read.question, intent, held) : draft;
 	});
+	if (problems.length > 0) return answer(null, fields, problems, params.key);
 	if (typeof made === "string") return answer(made, fields, [], params.key);
 	context.get(sessionContext).flash("toast", { key: "forms:toast.saved" });
 	const { formId } = params;

@@ -34,28 +34,28 @@ function ownOf(screen: Screen) {
 const Sent = Fields.extend({ intent: z.enum(["save", "up", "down", "remove"]), seen: z.string().max(40) });
 
 export async function action({ context, params, request }: Route.ActionArgs) {
-	const { desk, form } = await getOwnForm(context, params.formId);
-	const before = findScreen(form.draft, params.key);
-	if (!before) throw refusal("form_not_found");
+	const { desk } = await getOwnForm(context, params.formId);
 	const parsed = parseForm(Sent, await request.formData());
 	// The page's own controls cannot make such a form: a forged or broken one. What is amiss in a text is told below.
 	if (!parsed.ok) throw refusal("form_not_understood");
 	const { intent, seen, ...fields } = parsed.value;
 	const language = getLanguage(context);
-	const read = readScreenFields(fields, form.draft, before, language);
-	if (!read.value) return answer(null, fields, read.problems);
-
+	let problems: Problem[] = [];
 	const made = await makeChange(desk, params.formId, (draft, held) => {
 		const now = findScreen(draft, params.key);
 		if (!now) return "not_found";
-		if (intent === "remove") return removeScreen(draft, params.key, held);
+		// Before anything typed is looked at: the page that comes back with problems shows, and has then seen, what is there now.
 		if (fingerprintOf(ownOf(now)) !== seen) return "changed_meanwhile";
+		if (intent === "remove") return removeScreen(draft, params.key, held);
 		// Questions that somebody added meanwhile stay.
-		const { value } = readScreenFields(fields, draft, now, language);
-		const saved = value ? replaceScreen(draft, params.key, value, held) : "not_found";
+		const read = readScreenFields(fields, draft, now, language);
+		problems = read.problems;
+		if (!read.value) return draft;
+		const saved = replaceScreen(draft, params.key, read.value, held);
 		if (typeof saved === "string" || intent === "save") return saved;
 		return moveScreen(saved, params.key, intent === "up" ? -1 : 1);
 	});
+	if (problems.length > 0) return answer(null, fields, problems);
 	if (typeof made === "string") return answer(made, fields, []);
 	context.get(sessionContext).flash("toast", { key: "forms:toast.saved" });
 	const { formId } = params;

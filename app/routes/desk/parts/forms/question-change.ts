@@ -1,23 +1,16 @@
 import { z } from "zod";
 import type { FormDraft } from "#app/collect/editing/draft.ts";
-import {
-	copyQuestion,
-	moveQuestion,
-	moveQuestionTo,
-	removeQuestion,
-	replaceQuestion,
-} from "#app/collect/editing/edit-questions.ts";
+import { copyQuestion, moveQuestion, moveQuestionTo, replaceQuestion } from "#app/collect/editing/edit-questions.ts";
 import { type Held, moved } from "#app/collect/editing/edit-screens.ts";
 import type { Change } from "#app/collect/editing/form-drafts.server.ts";
 import type { Question } from "#app/collect/form.ts";
 
-/** What a button of the question's page does beside saving: every one of them keeps what is typed. */
+/** What a button of the question's page does beside saving: every one but the removal keeps what is typed. */
 export const QuestionIntent = z.string().regex(/^(save|up|down|copy|remove|to:[a-z0-9_]{1,80}|option_up:\d{1,2})$/);
 
 /** Puts the question in its place as it was typed, and does what the button says. */
 export function changeQuestion(draft: FormDraft, typed: Question, intent: string, held: Held): ReturnType<Change> {
 	const [what, where = ""] = intent.split(":");
-	if (what === "remove") return removeQuestion(draft, typed.key, held);
 	const question = what === "option_up" ? withOptionUp(typed, Number(where)) : typed;
 	const saved = replaceQuestion(draft, question, held);
 	if (typeof saved === "string") return saved;
