@@ -68,7 +68,7 @@ function numberMeasures(question: Extract<Question, { type: "number" }>, perPlan
 		hue,
 		label: nameOf(question),
 		description: {
-			en: `Mean of one operation: ${question.text.en}`,
+			en: `Mean per operation: ${question.text.en}`,
 			es: `Promedio por finca: ${question.text.es}`,
 		},
 	};
@@ -95,7 +95,7 @@ function oncePercent(question: Question): Measure {
 		key: question.key,
 		kind: "mean",
 		label: nameOf(question),
-		description: { en: `Mean of one operation: ${question.text.en}`, es: `Promedio por finca: ${question.text.es}` },
+		description: { en: `Mean per operation: ${question.text.en}`, es: `Promedio por finca: ${question.text.es}` },
 		unit: "percent",
 		decimals: 0,
 		hue: "yield",

@@ -66,6 +66,17 @@ export function parseTypedNumber(typed: string, language: string, { belowZero = 
 	return { ok: true, value: isNegative ? -value : value, unit: unit.unit };
 }
 
+/** A number in a box that fixes its unit: with another unit typed behind it, it is not taken for one of that unit. */
+export function parsePlainNumber(
+	typed: string,
+	language: string,
+	{ unit, ...settings }: { unit?: TypedUnit; belowZero?: boolean } = {},
+): { ok: true; value: number } | { ok: false } {
+	const read = parseTypedNumber(typed, language, settings);
+	const isPlain = read.ok && (read.unit === null || read.unit === unit);
+	return isPlain ? { ok: true, value: read.value } : { ok: false };
+}
+
 /** A number as both languages read it back, with points for decimals and commas for thousands. */
 export function writeNumber(value: number): string {
 	const text = new Intl.NumberFormat("en-US", { maximumFractionDigits: 12 }).format(value);

@@ -2,7 +2,7 @@ import { z } from "zod";
 import type { Comparison, Condition } from "#app/lib/condition.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import type { Question, Screen } from "../form.ts";
-import { parseTypedNumber, writeNumber } from "../typed-number.ts";
+import { parsePlainNumber, writeNumber } from "../typed-number.ts";
 import { type FormDraft, findQuestion, questionsOf } from "./draft.ts";
 
 export const comparisons = ["=", "!=", "<", "<=", ">", ">="] as const;
@@ -104,7 +104,8 @@ function readRight(line: Line, question: Question, standing: Standing, language:
 		const isDay = /^\d{4}-\d{2}-\d{2}$/.test(typed) && !Number.isNaN(Date.parse(typed));
 		return isDay ? { value: typed } : { field: "value", code: "date_wrong" };
 	}
-	const number = parseTypedNumber(typed, language, { belowZero: true });
+	const unit = question.type === "percent" ? "percent" : undefined;
+	const number = parsePlainNumber(typed, language, { belowZero: true, unit });
 	return number.ok ? { value: number.value } : { field: "value", code: "not_a_number" };
 }
 
@@ -119,7 +120,7 @@ function readOther(
 	if (!alike) return { field: "other", code: "condition_unlike" };
 	const typed = line.times?.trim() ?? "";
 	if (typed === "") return { question: other.key };
-	const times = parseTypedNumber(typed, language);
+	const times = parsePlainNumber(typed, language);
 	if (!times.ok || times.value <= 0) return { field: "times", code: "not_nothing" };
 	return { question: other.key, times: times.value };
 }

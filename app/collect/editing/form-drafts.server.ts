@@ -101,7 +101,7 @@ async function toDeskForm(trx: Trx, viewer: Associate, row: DraftRow): Promise<D
 	};
 }
 
-function sharesState(viewer: Associate, stateFips: string[]): boolean {
+export function sharesState(viewer: Associate, stateFips: string[]): boolean {
 	return stateFips.some((state) => viewer.stateFips.includes(state));
 }
 

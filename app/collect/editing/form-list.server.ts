@@ -3,6 +3,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { Words } from "#app/lib/words.ts";
 import { groupBy } from "#app/lib/group-by.ts";
+import { sharesState } from "./form-drafts.server.ts";
 import { readyFormKeys, readyForms } from "../forms/ready-forms.ts";
 
 export type ListedForm = {
@@ -15,10 +16,9 @@ export type ListedForm = {
 	stateFips: string[];
 	/** The newest version, null where none was published. */
 	version: number | null;
-	editedAt: Date | null;
 	surveys: UsingSurvey[];
 };
-export type UsingSurvey = { surveyId: string; title: Words; season: number; version: number };
+export type UsingSurvey = { surveyId: string; title: Words; season: number };
 
 /** The ready forms, then everybody's own, those that the viewer may change first, newest change first. */
 export async function listForms(trx: Trx, viewer: Associate): Promise<ListedForm[]> {
@@ -26,7 +26,7 @@ export async function listForms(trx: Trx, viewer: Associate): Promise<ListedForm
 	const rows = await selectForms(trx).execute();
 	const used = (key: string) => surveys.get(key) ?? [];
 	const own = rows.map((row): ListedForm => {
-		const mayEdit = row.state_fips.some((state) => viewer.stateFips.includes(state));
+		const mayEdit = sharesState(viewer, row.state_fips);
 		return {
 			formId: row.form_id,
 			formKey: row.form_key,
@@ -36,12 +36,11 @@ export async function listForms(trx: Trx, viewer: Associate): Promise<ListedForm
 			makerName: row.maker_name,
 			stateFips: row.state_fips,
 			version: row.version,
-			editedAt: row.edited_at,
 			surveys: used(row.form_key),
 		};
 	});
 	const ready = readyFormKeys.map((key): ListedForm => {
-		const facts = { isReady: true, mayEdit: false, makerName: null, stateFips: [], version: null, editedAt: null };
+		const facts = { isReady: true, mayEdit: false, makerName: null, stateFips: [], version: null };
 		return { formId: key, formKey: key, title: readyForms[key].title, ...facts, surveys: used(key) };
 	});
 	return [...ready, ...own.filter(({ mayEdit }) => mayEdit), ...own.filter(({ mayEdit }) => !mayEdit)];
@@ -57,7 +56,6 @@ function selectForms(trx: Trx) {
 			"f.form_key",
 			"f.state_fips",
 			"maker.display_name as maker_name",
-			"d.edited_at",
 			sql<Words>`d.draft -> 'title'`.as("title"),
 			sql<number | null>`(select max(version) from collect.form_version v where v.form_id = f.form_id)`.as("version"),
 		])
@@ -72,7 +70,6 @@ async function listUsingSurveys(trx: Trx, viewer: Associate) {
 		surveyId: row.survey_id,
 		title: row.title as Words,
 		season: row.season,
-		version: row.version,
 	}));
 }
 
@@ -90,7 +87,7 @@ function selectUsing(trx: Trx, viewer: Associate) {
 					.where("g.state_fips", "in", viewer.stateFips),
 			),
 		)
-		.select(["f.form_key", "s.survey_id", "s.title", "s.season", "v.version"])
+		.select(["f.form_key", "s.survey_id", "s.title", "s.season"])
 		.orderBy("s.season", "desc")
 		.orderBy("s.created_at", "desc");
 }

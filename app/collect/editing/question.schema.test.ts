@@ -25,6 +25,7 @@ describe("what is to be mended", () => {
 		["crossed limits", { limits: { hardMin: "10", hardMax: "5" } }, "limits.hardMax", "limits_crossed"],
 		["a soft limit outside a hard one", { limits: { hardMax: "5", softMax: "6" } }, "limits.softMin", "limits_outside"],
 		["a limit that is no number", { limits: { hardMax: "many" } }, "limits.hardMax", "not_a_number"],
+		["a limit in another unit than is kept", { limits: { hardMax: "20 kg" } }, "limits.hardMax", "not_a_number"],
 	])("%s is told beside its field", (_case, more, field, code) => {
 		expect(read("harvested", more).problems).toEqual([expect.objectContaining({ field, code })]);
 	});
@@ -42,6 +43,13 @@ describe("what is to be mended", () => {
 		expect(made.question?.condition).toEqual({
 			any_planting: { compare: ">", question: "harvested", to: { value: 1000 } },
 		});
+	});
+
+	test("a percent may have its sign, and a length the comma of a thousand", () => {
+		const percent = read("cause_freeze", { limits: { hardMin: "0", hardMax: "80 %" } });
+		expect(percent.question).toMatchObject({ limits: { hardMin: 0, hardMax: 80 } });
+		expect(read("comment", { maxLength: "1,000" }).question).toMatchObject({ maxLength: 1000 });
+		expect(read("comment", { maxLength: "12.5" }).problems).toEqual([{ field: "maxLength", code: "not_whole" }]);
 	});
 
 	test("fewer than two answers to choose from", () => {

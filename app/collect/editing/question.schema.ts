@@ -2,7 +2,7 @@ import { z } from "zod";
 import { type Problem, problemMessage } from "#app/lib/parse-form.ts";
 import type { Words } from "#app/lib/words.ts";
 import type { Question } from "../form.ts";
-import { parseTypedNumber, writeNumber } from "../typed-number.ts";
+import { parsePlainNumber, writeNumber } from "../typed-number.ts";
 import { areCrossed } from "./before-opening.ts";
 import { ConditionLines, linesOf, questionsBefore, readCondition } from "./condition-lines.ts";
 import { type FormDraft, findQuestion, longestText } from "./draft.ts";
@@ -39,7 +39,8 @@ export function* textProblems(name: string, words: Words, { needed = false } = {
 const typedNumber = z.string().max(60, "too_long").optional();
 export const limitNames = ["hardMin", "hardMax", "softMin", "softMax"] as const;
 export const unitFamilies = ["mass", "area", "temperature", "length", "trees", "count"] as const;
-const mostOptions = 30;
+/** A page has a row for each and two more, as long as there is room. */
+export const mostOptions = 32;
 
 const OptionRow = TypedTexts.extend({
 	key: z.string().max(60).optional(),
@@ -62,10 +63,7 @@ export const QuestionFields = z.object({
 		.default({}),
 	notBefore: z.string().max(60).optional(),
 	maxLength: typedNumber,
-	options: z
-		.array(OptionRow)
-		.max(mostOptions + 2)
-		.default([]),
+	options: z.array(OptionRow).max(mostOptions).default([]),
 	condition: ConditionLines.default({ join: "all", unsure: "ask", lines: [] }),
 });
 export type QuestionFields = z.infer<typeof QuestionFields>;
@@ -126,7 +124,8 @@ function withOwnParts(
 	switch (question.type) {
 		case "number":
 		case "percent": {
-			const limits = readLimits(fields.limits, language, problems);
+			const unit = question.type === "percent" ? ("percent" as const) : undefined;
+			const limits = readLimits(fields.limits, { language, unit }, problems);
 			const ranged = Object.keys(limits).length > 0 ? { ...question, limits } : { ...question, limits: undefined };
 			if (ranged.type === "percent") return ranged;
 			return { ...ranged, unitFamily: fields.unitFamily, prefill: fields.prefill };
@@ -135,7 +134,7 @@ function withOwnParts(
 			return { ...question, notBefore: fields.notBefore || undefined };
 		case "short_text":
 		case "long_text":
-			return { ...question, maxLength: readLength(fields.maxLength, problems) };
+			return { ...question, maxLength: readLength(fields.maxLength, language, problems) };
 		case "choice":
 		case "several":
 		case "rating":
@@ -145,19 +144,22 @@ function withOwnParts(
 	}
 }
 
-function readLength(typed: string | undefined, problems: Problem[]): number {
-	const length = Number(typed?.trim() || 200);
+function readLength(typed: string | undefined, language: string, problems: Problem[]): number {
+	const read = parsePlainNumber(typed?.trim() || "200", language);
+	const length = read.ok ? read.value : 0;
 	if (!Number.isInteger(length) || length < 1) problems.push({ field: "maxLength", code: "not_whole" });
 	else if (length > 5000) problems.push({ field: "maxLength", code: "too_large_limit", detail: { max: 5000 } });
 	return length;
 }
 
-function readLimits(typed: QuestionFields["limits"], language: string, problems: Problem[]) {
+type LimitsOf = { language: string; unit: "percent" | undefined };
+
+function readLimits(typed: QuestionFields["limits"], { language, unit }: LimitsOf, problems: Problem[]) {
 	const limits: Partial<Record<(typeof limitNames)[number], number>> = {};
 	for (const name of limitNames) {
 		const text = typed[name]?.trim() ?? "";
 		if (text === "") continue;
-		const read = parseTypedNumber(text, language, { belowZero: true });
+		const read = parsePlainNumber(text, language, { belowZero: true, unit });
 		if (read.ok) limits[name] = read.value;
 		else problems.push({ field: `limits.${name}`, code: "not_a_number" });
 	}
@@ -184,7 +186,7 @@ function readOptions(fields: QuestionFields, before: Question, language: string,
 		if (fields.type === "several") return { key: own, text, ...(alone && { alone }), ...crops };
 		const typed = score?.trim() ?? "";
 		if (fields.type !== "rating" || typed === "") return { key: own, text };
-		const read = parseTypedNumber(typed, language, { belowZero: true });
+		const read = parsePlainNumber(typed, language, { belowZero: true });
 		if (!read.ok) problems.push({ field: `options[${index}].score`, code: "not_a_number" });
 		return { key: own, text, ...(read.ok && { score: read.value }) };
 	});

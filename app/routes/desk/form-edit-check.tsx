@@ -19,7 +19,7 @@ import { ConditionFields, useConditionLabels } from "./parts/forms/condition-fie
 import { EditorFrame } from "./parts/forms/editor-frame.tsx";
 import { getOwnForm, makeChange, type NotChanged } from "./parts/forms/form-access.server.ts";
 import { NotChangedNotice } from "./parts/forms/not-changed.tsx";
-import { TextPair } from "./parts/forms/text-pair.tsx";
+import { TextPair, usePairLabels } from "./parts/forms/text-pair.tsx";
 
 /** One edit check of a screen; the address of a new one ends in "new". */
 export async function loader({ context, params }: Route.LoaderArgs) {
@@ -44,8 +44,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 		const screen = findScreen(draft, params.key);
 		const before = screen?.checks?.find(({ key }) => key === params.check);
 		if (!screen) return "not_found";
-		if (intent === "remove") return removeCheck(draft, params.key, params.check);
 		if (fingerprintOf(before ?? null) !== seen) return "changed_meanwhile";
+		if (intent === "remove") return removeCheck(draft, params.key, params.check);
 		const read = readCheckFields(fields, draft, screen, before, language);
 		problems = read.problems;
 		return read.value ? putCheck(draft, params.key, read.value) : draft;
@@ -68,9 +68,8 @@ export default function FormEditCheck({ loaderData, actionData, params }: Route.
 	const { draft, screen, check, seen } = loaderData;
 	const conditions = useConditionLabels();
 	const value = actionData?.values ?? (check ? fieldsOfCheck(check) : blank);
-	const messageIn = (language: "en" | "es") =>
-		t("field.inLanguage", { label: t("check.message"), language: t(`common:language.${language}`) });
-	const labels = { "message.en": messageIn("en"), "message.es": messageIn("es"), ...conditions("when") };
+	const inBoth = usePairLabels();
+	const labels = { ...inBoth({ message: t("check.message") }), ...conditions("when") };
 	return (
 		<EditorFrame formId={params.formId} draft={draft} preview={screen}>
 			<p className="mb-4">
@@ -98,6 +97,7 @@ export default function FormEditCheck({ loaderData, actionData, params }: Route.
 					value={value.message}
 					problems={actionData?.problems}
 					rows={2}
+					isNew={check === null}
 				/>
 				<Section title={t("check.odd")} level={3}>
 					<ConditionFields

@@ -17,7 +17,7 @@ import { refusal } from "#app/lib/refusal.ts";
 import { useFormWords } from "./parts/forms/condition-words.ts";
 import { getForm, getOwnForm, makeChange } from "./parts/forms/form-access.server.ts";
 import { NotChangedNotice } from "./parts/forms/not-changed.tsx";
-import { TextPair } from "./parts/forms/text-pair.tsx";
+import { TextPair, usePairLabels } from "./parts/forms/text-pair.tsx";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const { form } = await getForm(context, params.formId);
@@ -31,7 +31,10 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 			label: measure.label,
 			description: measure.description,
 			isByDefault: !draft.measures.some(({ key }) => key === measure.key),
-			questions: questionsOfMeasure(measure).flatMap((key) => findQuestion(draft, key)?.question.text ?? []),
+			questions: questionsOfMeasure(measure).flatMap((key) => {
+				const question = findQuestion(draft, key)?.question;
+				return question ? (question.label ?? question.text) : [];
+			}),
 		})),
 	};
 }
@@ -60,11 +63,7 @@ export default function FormMeasures({ loaderData, actionData }: Route.Component
 	const { measures, mayEdit } = loaderData;
 	const format = useFormat();
 	const said = useFormWords();
-	const inLanguage = (language: "en" | "es") =>
-		t("field.inLanguage", { label: t("measures.name"), language: t(`common:language.${language}`) });
-	const labels = Object.fromEntries(
-		measures.flatMap(({ key }) => (["en", "es"] as const).map((one) => [`${key}.label.${one}`, inLanguage(one)])),
-	);
+	const labels = usePairLabels()(Object.fromEntries(measures.map(({ key }) => [`${key}.label`, t("measures.name")])));
 	return (
 		<>
 			<ErrorSummary problems={actionData?.problems} labels={labels} />
@@ -77,10 +76,9 @@ export default function FormMeasures({ loaderData, actionData }: Route.Component
 					<Section key={measure.key} title={said(measure.label)} level={3}>
 						<p className="max-w-prose">{said(measure.description)}</p>
 						<p className="mb-3 text-sm text-quiet">
-							{t(`measures.kind.${measure.kind}`)}{" "}
+							{t(`measures.kind.${measure.kind}`)} {measure.isByDefault && t("measures.byDefault")}{" "}
 							{measure.questions.length > 0 &&
-								t("measures.from", { questions: format.list(measure.questions.map(said)) })}{" "}
-							{measure.isByDefault && t("measures.byDefault")}
+								t("measures.from", { questions: format.list(measure.questions.map(said)) })}
 						</p>
 						{mayEdit && (
 							<details open={sent !== undefined}>

@@ -12,7 +12,7 @@ import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Page } from "#app/components/page.tsx";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { useFormWords } from "./parts/forms/condition-words.ts";
-import { TextPair } from "./parts/forms/text-pair.tsx";
+import { TextPair, usePairLabels } from "./parts/forms/text-pair.tsx";
 
 export async function loader({ context, request }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
@@ -43,13 +43,12 @@ export default function FormNew({ loaderData, actionData }: Route.ComponentProps
 	const values = actionData?.values as { from?: string; title?: { en?: string; es?: string } } | undefined;
 	const source = forms.find(({ formId }) => formId === from);
 	const title = values?.title ?? source?.title;
-	const titleLabel = (language: "en" | "es") =>
-		t("field.inLanguage", { label: t("form.title"), language: t(`common:language.${language}`) });
+	const inBoth = usePairLabels();
 	return (
 		<Page title={t("new.title")} lead={t("new.lead")} width="narrow">
 			<ErrorSummary
 				problems={actionData?.problems}
-				labels={{ from: t("new.from"), "title.en": titleLabel("en"), "title.es": titleLabel("es") }}
+				labels={{ from: t("new.from"), ...inBoth({ title: t("form.title") }) }}
 			/>
 			<Form method="post" noValidate>
 				<ChoiceField
@@ -73,6 +72,7 @@ export default function FormNew({ loaderData, actionData }: Route.ComponentProps
 					label={t("form.title")}
 					value={{ en: title?.en ?? "", es: title?.es ?? "" }}
 					problems={actionData?.problems}
+					isNew
 				/>
 				<Button>{t("new.make")}</Button>
 			</Form>

@@ -76,7 +76,7 @@ function FormTable({ caption, forms }: { caption: string; forms: ListedForm[] })
 						surveys.length === 0 ? (
 							t("list.noSurvey")
 						) : (
-							<ul className="list-none">
+							<ul className="-my-1 list-none">
 								{surveys.map(({ surveyId, title, season }) => (
 									<li key={surveyId}>
 										<Link to={href("/desk/surveys/:surveyId", { surveyId })} className="inline-block py-1">

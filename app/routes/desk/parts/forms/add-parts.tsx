@@ -9,7 +9,7 @@ import { Section } from "#app/components/section.tsx";
 import type { FormValues, Problem } from "#app/lib/parse-form.ts";
 import type { Words } from "#app/lib/words.ts";
 import { useFormWords } from "./condition-words.ts";
-import { TextPair } from "./text-pair.tsx";
+import { TextPair, usePairLabels } from "./text-pair.tsx";
 
 type Sent = { values?: FormValues; problems?: Problem[] };
 
@@ -24,7 +24,7 @@ export function AddParts({ draft, values, problems }: Sent & { draft: FormDraft 
 				<Section title={t("add.question")}>
 					<Form method="post" noValidate>
 						<input type="hidden" name="intent" value="add_question" />
-						<TextPair name="text" label={t("question.text")} value={textIn(values, "text")} problems={problems} />
+						<TextPair name="text" label={t("question.text")} value={textIn(values, "text")} problems={problems} isNew />
 						<div className="grid gap-x-6 md:grid-cols-2">
 							<ChoiceField
 								kind="select"
@@ -53,6 +53,7 @@ export function AddParts({ draft, values, problems }: Sent & { draft: FormDraft 
 						label={t("screen.title")}
 						value={textIn(values, "screenTitle")}
 						problems={problems}
+						isNew
 					/>
 					<AskedField value={values?.asked === "planting" ? "planting" : "once"} />
 					<Button kind="secondary">{t("add.screenButton")}</Button>
@@ -116,15 +117,7 @@ export function DropForm() {
 
 export function useAddLabels(): Record<string, string> {
 	const { t } = useTranslation("forms");
-	const names = { title: t("form.title"), screenTitle: t("screen.title"), text: t("question.text") };
-	return Object.fromEntries(
-		Object.entries(names).flatMap(([name, label]) =>
-			(["en", "es"] as const).map((language) => [
-				`${name}.${language}`,
-				t("field.inLanguage", { label, language: t(`common:language.${language}`) }),
-			]),
-		),
-	);
+	return usePairLabels()({ title: t("form.title"), screenTitle: t("screen.title"), text: t("question.text") });
 }
 
 /** A text that was sent, in whatever shape it came. */

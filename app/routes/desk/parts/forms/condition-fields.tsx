@@ -40,15 +40,13 @@ export function ConditionFields(props: ConditionFieldsProps) {
 	const shown = Math.min(mostLines, Math.max(value.lines.length + 1, 2));
 	return (
 		<>
-			{value.lines.length > 1 || shown > 1 ? (
-				<ChoiceField
-					kind="select"
-					name={`${name}.join`}
-					legend={t("condition.join.legend")}
-					options={(["all", "any"] as const).map((join) => ({ value: join, label: t(`condition.join.${join}`) }))}
-					defaultValue={value.join}
-				/>
-			) : null}
+			<ChoiceField
+				kind="select"
+				name={`${name}.join`}
+				legend={t("condition.join.legend")}
+				options={(["all", "any"] as const).map((join) => ({ value: join, label: t(`condition.join.${join}`) }))}
+				defaultValue={value.join}
+			/>
 			{Array.from({ length: shown }, (_, index) => `${name}.lines[${index}]`).map((line, index) => (
 				<LineFields
 					key={line}

@@ -133,7 +133,7 @@ function MoveButtons({ what, of, name }: { what: "question" | "screen"; of: stri
 	));
 }
 
-/** What was moved comes back with its address; the focus goes there with it. */
+/** What was moved or added comes back with its address; the focus goes there with it. */
 function useFocusOnHash() {
 	const location = useLocation();
 	useEffect(() => {

@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import type { QuestionFields } from "#app/collect/editing/question.schema.ts";
+import { mostOptions, type QuestionFields } from "#app/collect/editing/question.schema.ts";
 import { Button } from "#app/components/button.tsx";
 import { CheckField } from "#app/components/check-field.tsx";
 import { TextField } from "#app/components/text-field.tsx";
@@ -15,10 +15,10 @@ type OptionFieldsProps = {
 
 const blank = { en: "", es: "", alone: false, key: undefined, score: undefined };
 
-/** The answers to choose from, with two rows more than there are; a row that is emptied in both languages goes. */
+/** The answers to choose from, with two rows more than there are, up to as many as there may be; a row that is emptied in both languages goes. */
 export function OptionFields({ type, value, problems, isHeld }: OptionFieldsProps) {
 	const { t } = useTranslation("forms");
-	const rows = [...value, blank, blank];
+	const rows = [...value, blank, blank].slice(0, mostOptions);
 	return (
 		<fieldset className="mb-6">
 			<legend className="font-bold">{t("option.title")}</legend>
@@ -46,6 +46,7 @@ export function OptionFields({ type, value, problems, isHeld }: OptionFieldsProp
 									problem={problems?.find(({ field }) => field === `options[${index}].score`)}
 									inputMode="decimal"
 									size="short"
+									maxLength={60}
 									optional
 								/>
 							)}

@@ -23,7 +23,7 @@ export function PhonePreview({ screen }: PhonePreviewProps) {
 			<Phone screen={screen} language={own} />
 			<details className="mt-4">
 				<summary className="min-h-11 cursor-pointer py-2 font-bold text-damson">
-					{t("preview.in", { language: t(`common:language.${other}`) })}
+					{t("preview.in", { language: t(`language.${other}`) })}
 				</summary>
 				<Phone screen={screen} language={other} />
 			</details>
@@ -38,7 +38,7 @@ function Phone({ screen, language }: PhonePreviewProps & { language: Language })
 	const title = useStepTitle()({ screen: shown, planting: planting ?? null });
 	return (
 		<section
-			aria-label={t("preview.in", { language: t(`common:language.${language}`) })}
+			aria-label={t("preview.in", { language: t(`language.${language}`) })}
 			// Scrolled by keyboard only while in focus.
 			// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex
 			tabIndex={0}

@@ -2,7 +2,12 @@ import { useTranslation } from "react-i18next";
 import type { DeskForm } from "#app/collect/editing/form-drafts.server.ts";
 import { questionsBefore } from "#app/collect/editing/condition-lines.ts";
 import { questionTypes } from "#app/collect/editing/edit-questions.ts";
-import { limitNames, type QuestionFields as Fields, unitFamilies } from "#app/collect/editing/question.schema.ts";
+import {
+	limitNames,
+	mostOptions,
+	type QuestionFields as Fields,
+	unitFamilies,
+} from "#app/collect/editing/question.schema.ts";
 import type { Question, Screen } from "#app/collect/form.ts";
 import { CheckField } from "#app/components/check-field.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
@@ -12,7 +17,7 @@ import type { Problem } from "#app/lib/parse-form.ts";
 import { ConditionFields, useConditionLabels } from "./condition-fields.tsx";
 import { useFormWords } from "./condition-words.ts";
 import { OptionFields } from "./option-fields.tsx";
-import { TextPair } from "./text-pair.tsx";
+import { TextPair, usePairLabels } from "./text-pair.tsx";
 
 type QuestionFieldsProps = {
 	form: Pick<DeskForm, "draft" | "held">;
@@ -26,17 +31,16 @@ type QuestionFieldsProps = {
 export function QuestionFields({ form, question, screen, value, problems }: QuestionFieldsProps) {
 	const { t } = useTranslation("forms");
 	const isHeld = form.held.includes(question.key);
-	const shared = { problems };
 	return (
 		<>
-			<TextPair {...shared} name="text" label={t("question.text")} value={value.text} rows={2} />
-			<TextPair {...shared} name="help" label={t("question.help")} value={value.help} rows={2} optional />
+			<TextPair name="text" label={t("question.text")} value={value.text} problems={problems} rows={2} />
+			<TextPair name="help" label={t("question.help")} value={value.help} problems={problems} rows={2} optional />
 			<TextPair
-				{...shared}
 				name="label"
 				label={t("question.label")}
 				help={t("question.labelHelp")}
 				value={value.label}
+				problems={problems}
 				optional
 			/>
 			<ChoiceField
@@ -61,9 +65,9 @@ export function QuestionFields({ form, question, screen, value, problems }: Ques
 			/>
 			<Section title={t("condition.title")} level={3}>
 				<ConditionFields
-					{...shared}
 					name="condition"
 					value={value.condition}
+					problems={problems}
 					kept={question.condition}
 					draft={form.draft}
 					offered={questionsBefore(form.draft, question.key)}
@@ -110,6 +114,7 @@ function OwnParts({ question, screen, value, problems, isHeld }: OwnPartsProps) 
 					problem={problems?.find(({ field }) => field === "maxLength")}
 					inputMode="numeric"
 					size="short"
+					maxLength={60}
 				/>
 			);
 		case "choice":
@@ -192,22 +197,15 @@ function OrderField({ question, screen, value }: OrderFieldProps) {
 export function useQuestionLabels(): Record<string, string> {
 	const { t } = useTranslation("forms");
 	const conditions = useConditionLabels();
-	const inBoth = (name: string, label: string) =>
-		(["en", "es"] as const).map((language) => [
-			`${name}.${language}`,
-			t("field.inLanguage", { label, language: t(`common:language.${language}`) }),
-		]);
-	return Object.fromEntries([
-		...inBoth("text", t("question.text")),
-		...inBoth("label", t("question.label")),
-		...inBoth("help", t("question.help")),
-		["type", t("question.type")],
-		["maxLength", t("question.maxLength")],
-		...limitNames.map((name) => [`limits.${name}`, t(`limits.${name}`)]),
-		...Array.from({ length: 32 }, (_, index) => index).flatMap((index) => [
-			...inBoth(`options[${index}]`, t("option.text", { number: index + 1 })),
-			[`options[${index}].score`, t("option.score", { number: index + 1 })],
-		]),
-		...Object.entries(conditions("condition")),
-	]) as Record<string, string>;
+	const inBoth = usePairLabels();
+	const rows = Array.from({ length: mostOptions }, (_, index) => ({ name: `options[${index}]`, number: index + 1 }));
+	return {
+		...inBoth({ text: t("question.text"), label: t("question.label"), help: t("question.help") }),
+		type: t("question.type"),
+		maxLength: t("question.maxLength"),
+		...Object.fromEntries(limitNames.map((name) => [`limits.${name}`, t(`limits.${name}`)])),
+		...inBoth(Object.fromEntries(rows.map(({ name, number }) => [name, t("option.text", { number })]))),
+		...Object.fromEntries(rows.map(({ name, number }) => [`${name}.score`, t("option.score", { number })])),
+		...conditions("condition"),
+	};
 }

@@ -11,7 +11,7 @@ import { Section } from "#app/components/section.tsx";
 import type { Problem } from "#app/lib/parse-form.ts";
 import { AskedField } from "./add-parts.tsx";
 import { ConditionFields, useConditionLabels } from "./condition-fields.tsx";
-import { TextPair } from "./text-pair.tsx";
+import { TextPair, usePairLabels } from "./text-pair.tsx";
 
 type ScreenFieldsProps = {
 	draft: FormDraft;
@@ -98,12 +98,6 @@ export function ScreenActions({ isHeld, questions }: { isHeld: boolean; question
 export function useScreenLabels(): Record<string, string> {
 	const { t } = useTranslation("forms");
 	const conditions = useConditionLabels();
-	const names = { title: t("screen.title"), help: t("screen.help") };
-	const texts = Object.entries(names).flatMap(([name, label]) =>
-		(["en", "es"] as const).map((language) => [
-			`${name}.${language}`,
-			t("field.inLanguage", { label, language: t(`common:language.${language}`) }),
-		]),
-	);
-	return { ...Object.fromEntries(texts), ...conditions("condition") } as Record<string, string>;
+	const inBoth = usePairLabels();
+	return { ...inBoth({ title: t("screen.title"), help: t("screen.help") }), ...conditions("condition") };
 }

@@ -15,6 +15,8 @@ type TextPairProps = {
 	help?: string;
 	/** Whether it may be left out in both languages alike. */
 	optional?: boolean;
+	/** Whether it is of a part that is not there yet: nothing is missing before it is begun. */
+	isNew?: boolean;
 };
 
 /** One text in both languages, side by side where there is room; one that lacks its translation says so. */
@@ -27,7 +29,7 @@ export function TextPair(props: TextPairProps) {
 					key={language}
 					{...props}
 					language={language}
-					missing={isMissing(value, language, props.optional)}
+					missing={isMissing(value, language, props.optional || props.isNew)}
 					onText={(text) => setValue((before) => ({ ...before, [language]: text }))}
 				/>
 			))}
@@ -36,22 +38,23 @@ export function TextPair(props: TextPairProps) {
 }
 
 /** Whether a text is to be translated: it is there in the other language, or has to be there. */
-export function isMissing(value: Words, language: Language, optional = false): boolean {
+function isMissing(value: Words, language: Language, mayLack = false): boolean {
 	const isEmpty = value[language].trim() === "";
-	return isEmpty && (!optional || value.en.trim() !== "" || value.es.trim() !== "");
+	return isEmpty && (!mayLack || value.en.trim() !== "" || value.es.trim() !== "");
 }
 
 type TextInProps = TextPairProps & { language: Language; missing: boolean; onText: (text: string) => void };
 
 function TextIn({ name, label, value, problems, rows, help, optional, language, missing, onText }: TextInProps) {
 	const { t } = useTranslation("forms");
+	const labelIn = useLabelIn();
 	const field = `${name}.${language}`;
 	return (
 		// What is typed bubbles up to here; the field itself stays uncontrolled, and works without scripts.
 		<div onInput={(event) => onText((event.target as HTMLTextAreaElement).value)}>
 			<TextField
 				name={field}
-				label={t("field.inLanguage", { label, language: t(`common:language.${language}`) })}
+				label={labelIn(label, language)}
 				defaultValue={value[language]}
 				multiline={rows !== undefined}
 				rows={rows}
@@ -69,4 +72,20 @@ function TextIn({ name, label, value, problems, rows, help, optional, language, 
 			/>
 		</div>
 	);
+}
+
+function useLabelIn() {
+	const { t } = useTranslation("forms");
+	return (label: string, language: Language) => t("field.inLanguage", { label, language: t(`language.${language}`) });
+}
+
+/** What both boxes of each text are called, for the summary of problems: from the texts' names and labels. */
+export function usePairLabels() {
+	const labelIn = useLabelIn();
+	return (labels: Record<string, string>): Record<string, string> =>
+		Object.fromEntries(
+			Object.entries(labels).flatMap(([name, label]) =>
+				languages.map((language) => [`${name}.${language}`, labelIn(label, language)]),
+			),
+		);
 }
