@@ -1,3 +1,4 @@
+import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
 import { Link } from "react-router";
 import type { AnswerGroup, ShownAnswer, ShownUnit } from "#app/collect/answer-lines.ts";
@@ -13,13 +14,15 @@ type AnswerListProps = {
 	groups: AnswerGroup[];
 	/** Where a group's answers are changed; without it they are only shown. */
 	editHref?: (stepKey: string) => string;
+	/** What leads to a group's answers where that is no link. */
+	changeOf?: (group: { stepKey: string; name: string }) => ReactNode;
 	/** Where a photo is; without it only how many there are is told. */
 	photoHref?: (photoId: string) => string;
 	level?: 2 | 3;
 };
 
 /** What was answered, question by question, in the unit it was told in: for review, receipt and desk alike. */
-export function AnswerList({ groups, editHref, photoHref, level = 2 }: AnswerListProps) {
+export function AnswerList({ groups, editHref, changeOf, photoHref, level = 2 }: AnswerListProps) {
 	const { t, i18n } = useTranslation();
 	const titleOf = useStepTitle();
 	// Where a planting is asked about on several screens, its name alone does not tell them apart.
@@ -37,7 +40,12 @@ export function AnswerList({ groups, editHref, photoHref, level = 2 }: AnswerLis
 			</Link>
 		);
 		return (
-			<Section key={group.stepKey} title={name} level={level} actions={edit}>
+			<Section
+				key={group.stepKey}
+				title={name}
+				level={level}
+				actions={edit ?? changeOf?.({ stepKey: group.stepKey, name })}
+			>
 				<DescriptionList
 					items={group.lines.map(({ text, shown }) => ({
 						term: wordsIn(text, i18n.language),

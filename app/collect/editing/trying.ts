@@ -8,7 +8,7 @@ import { findHindrance, type Hindrance } from "../progress.ts";
 import type { ReadSettings } from "../read-question.ts";
 import { withStep } from "../replace-step.ts";
 import { type ShownStep, showStep } from "../show-step.ts";
-import { type Asking, findStep, listAsked, type PlantingAsked } from "../steps.ts";
+import { findStep, listAsked, type PlantingAsked } from "../steps.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 
 /** Answers as a page carries them from one screen to the next, since nothing of a try-out is kept. */
@@ -50,16 +50,10 @@ export function startTrying(trying: Trying, settings: ReadSettings): Tried {
 	return showAt(trying, listAsked(trying.definition, trying.plantings, trying.answers)[0]?.step.key, settings);
 }
 
-/** A screen that was there before, with the answers so far. */
-export function backTo(trying: Trying, stepKey: string, settings: ReadSettings): Tried {
-	return showAt(trying, stepKey, settings);
-}
-
 /** Takes a screen's answers as a grower's are taken, and goes on: to what is to be mended or confirmed, or to what comes next. */
 export function goOn(trying: Trying, stepKey: string, values: StepValues, settings: ReadSettings): Tried {
-	const asking: Asking = trying;
-	const posted = readPostedStep(asking, stepKey, values, settings);
-	const asked = findStep(asking, stepKey);
+	const posted = readPostedStep(trying, stepKey, values, settings);
+	const asked = findStep(trying, stepKey);
 	if (!posted || !asked) return startTrying(trying, settings);
 	if (posted.problems.length > 0) {
 		const tried = showAt(trying, stepKey, settings);
@@ -73,7 +67,8 @@ export function goOn(trying: Trying, stepKey: string, values: StepValues, settin
 	return showAt(next, steps[steps.indexOf(stepKey) + 1], settings);
 }
 
-function showAt(trying: Trying, stepKey: string | undefined, { language }: ReadSettings): Tried {
+/** One screen with the answers so far; where there is none such, the review. */
+export function showAt(trying: Trying, stepKey: string | undefined, { language }: ReadSettings): Tried {
 	const { definition, plantings, answers } = trying;
 	const shown = stepKey === undefined ? undefined : showStep(trying, {}, stepKey, { language, massUnit: "lb" });
 	if (shown) return { at: "screen", shown, answers };

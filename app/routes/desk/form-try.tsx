@@ -1,18 +1,15 @@
 import { useTranslation } from "react-i18next";
 import { data, Form } from "react-router";
 import type { Route } from "./+types/form-try";
-import { requireAssociate } from "#app/auth/guard.server.ts";
 import { shownDefinition } from "#app/collect/editing/fill-gaps.ts";
-import { findDeskForm } from "#app/collect/editing/form-drafts.server.ts";
 import { samplePlantings } from "#app/collect/editing/sample-plantings.ts";
-import { backTo, CarriedAnswers, goOn, startTrying } from "#app/collect/editing/trying.ts";
+import { CarriedAnswers, goOn, showAt, startTrying } from "#app/collect/editing/trying.ts";
 import type { Answer } from "#app/collect/form.ts";
 import { Button } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { cropKeys, crops } from "#app/directory/crops.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
-import { refusal } from "#app/lib/refusal.ts";
 import { readPosted } from "../grower/parts/posted.server.ts";
 import { getForm } from "./parts/forms/form-access.server.ts";
 import { TriedStep } from "./parts/forms/tried-step.tsx";
@@ -24,9 +21,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 
 /** One step of the try-out. Answers travel with the page, in its own fields: nothing is kept. */
 export async function action({ context, params, request }: Route.ActionArgs) {
-	const desk = requireAssociate(context);
-	const form = await desk.transaction((trx) => findDeskForm(trx, desk.viewer, params.formId));
-	if (!form) throw refusal("form_not_found");
+	const { form } = await getForm(context, params.formId);
 	const sent = await readTried(request);
 	const chosen = crops.filter(({ cropKey }) => sent.crops.includes(cropKey));
 	const trying = {
@@ -39,8 +34,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const tried =
 		sent.go === "start"
 			? startTrying({ ...trying, answers: [] }, settings)
-			: sent.go === "back"
-				? backTo(trying, sent.to, settings)
+			: sent.go.startsWith("back:")
+				? showAt(trying, sent.go.slice("back:".length), settings)
 				: goOn(trying, sent.step, sent.values, settings);
 	const problems = tried.at === "screen" ? (tried.posted?.problems ?? []) : [];
 	return data({ tried, crops: sent.crops, problems }, { status: problems.length > 0 ? 400 : 200 });
@@ -53,7 +48,6 @@ async function readTried(request: Request) {
 	const carried = CarriedAnswers.parse(jsonIn(one("try-answers")));
 	return {
 		go: one("try-go"),
-		to: one("try-to"),
 		step: one("try-step"),
 		crops: [values["try-crops"] ?? []].flat().filter((crop) => (cropKeys as readonly string[]).includes(crop)),
 		answers: carried as Answer[],

@@ -1,3 +1,4 @@
+import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
 import { Form } from "react-router";
 import type { Tried } from "#app/collect/editing/trying.ts";
@@ -74,7 +75,7 @@ function TriedScreen({ tried, crops }: { tried: AtScreen; crops: string[] }) {
 					<Button name="try-go" value="on">
 						{t("common:button.continue")}
 					</Button>
-					{previous && <BackButton to={previous} />}
+					{previous && <BackButton to={previous}>{t("common:button.back")}</BackButton>}
 				</div>
 			</Form>
 		</>
@@ -100,13 +101,23 @@ function TriedReview({ tried, crops }: { tried: AtReview; crops: string[] }) {
 			) : (
 				<Notice tone="info">{t("try.wouldBeSent")}</Notice>
 			)}
-			<AnswerList groups={groups} level={3} />
-			{previous && (
-				<Form method="post" className="mt-6">
-					<Carried crops={crops} answers={answers} step="" />
-					<BackButton to={previous} />
-				</Form>
-			)}
+			<Form method="post">
+				<Carried crops={crops} answers={answers} step="" />
+				<AnswerList
+					groups={groups}
+					level={3}
+					changeOf={({ stepKey, name }) => (
+						<BackButton to={stepKey} label={t("common:answers.changeOf", { group: name })}>
+							{t("common:answers.change")}
+						</BackButton>
+					)}
+				/>
+				{previous && (
+					<div className="mt-6">
+						<BackButton to={previous}>{t("common:button.back")}</BackButton>
+					</div>
+				)}
+			</Form>
 		</>
 	);
 }
@@ -124,14 +135,10 @@ function Carried({ crops, answers, step }: { crops: string[]; answers: Answer[];
 	);
 }
 
-function BackButton({ to }: { to: string }) {
-	const { t } = useTranslation("forms");
+function BackButton({ to, label, children }: { to: string; label?: string; children: ReactNode }) {
 	return (
-		<>
-			<input type="hidden" name="try-to" value={to} />
-			<Button kind="quiet" name="try-go" value="back">
-				{t("common:button.back")}
-			</Button>
-		</>
+		<Button kind="quiet" name="try-go" value={`back:${to}`} aria-label={label}>
+			{children}
+		</Button>
 	);
 }
