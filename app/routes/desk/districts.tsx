@@ -26,7 +26,7 @@ import { BeforeAndAfter } from "./parts/districts/before-and-after.tsx";
 import { CountyNames } from "./parts/districts/county-names.tsx";
 import type { Grouping } from "./parts/districts/district-map.tsx";
 import { LastChange } from "./parts/districts/last-change.tsx";
-import { listSurveysOfState, readGroupingInput } from "./parts/districts/grouping.server.ts";
+import { readJudgedBy } from "./parts/districts/grouping.server.ts";
 
 /** `?state=&survey=&propose=1`: whose counties, by which answers, and whether the boxes hold the proposal. */
 const Query = z.object({
@@ -43,10 +43,8 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 	const found = await desk.transaction(async (trx) => {
 		const state = await findStateDistricts(trx, desk.viewer, stateFips);
 		if (!state) return undefined;
-		const surveys = await listSurveysOfState(trx, desk.viewer, stateFips);
-		const survey = surveys.find(({ surveyId }) => surveyId === query.survey) ?? surveys[0];
-		const input = survey && (await readGroupingInput(trx, survey.surveyId, state, namesNow(state)));
-		return { state, surveys, survey, input };
+		const judgedBy = await readJudgedBy(trx, desk.viewer, query.survey, { state, names: namesNow(state) });
+		return { state, ...judgedBy };
 	});
 	if (!found) throw refusal("page_not_found");
 	const { state, surveys, survey, input } = found;
@@ -91,9 +89,7 @@ export async function action({ context, request }: Route.ActionArgs) {
 		const problems = decision === "undo" ? [] : districtProblems(names, state.neighborsOf);
 		if (problems.length > 0) return { problems };
 		if (decision === "preview") {
-			const survey = await listSurveysOfState(trx, desk.viewer, stateFips);
-			const chosen = survey.find(({ surveyId }) => surveyId === query.survey) ?? survey[0];
-			const input = chosen && (await readGroupingInput(trx, chosen.surveyId, state, names));
+			const { input } = await readJudgedBy(trx, desk.viewer, query.survey, { state, names });
 			return { preview: input ? groupingOf(names, countGrouping(input)) : null };
 		}
 		const outcome =

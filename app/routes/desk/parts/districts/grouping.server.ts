@@ -11,14 +11,26 @@ import type { DistrictInput } from "#app/protect/districts.ts";
 import { listHoldings } from "#app/protect/holdings.server.ts";
 import { surveyQuantities } from "#app/protect/survey-table.ts";
 
+/** The surveys by which a grouping can be judged, the one chosen or else the first of them, and what its answers say. */
+export async function readJudgedBy(
+	trx: Trx,
+	viewer: Associate,
+	chosenId: string,
+	{ state, names }: { state: StateDistricts; names: DistrictNames },
+) {
+	const surveys = await listSurveysOfState(trx, viewer, state.stateFips);
+	const survey = surveys.find(({ surveyId }) => surveyId === chosenId) ?? surveys[0];
+	return { surveys, survey, input: survey && (await readGroupingInput(trx, survey.surveyId, state, names)) };
+}
+
 /** Surveys by whose answers districts of a state can be judged, the latest first. */
-export async function listSurveysOfState(trx: Trx, viewer: Associate, stateFips: string) {
+async function listSurveysOfState(trx: Trx, viewer: Associate, stateFips: string) {
 	const surveys = await listSurveys(trx, viewer);
 	return surveys.filter((survey) => survey.state !== "draft" && survey.stateFips.includes(stateFips));
 }
 
 /** What a grouping of a state's counties is judged by: the answers of one survey, under the rules that hold today. */
-export async function readGroupingInput(
+async function readGroupingInput(
 	trx: Trx,
 	surveyId: string,
 	state: StateDistricts,
