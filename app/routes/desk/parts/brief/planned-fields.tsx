@@ -38,7 +38,7 @@ export function PlannedFields({ planned, typed, problems, measures, cropKeys }: 
 		return (
 			// Rows are told apart by nothing but their place.
 			// oxlint-disable-next-line react/no-array-index-key
-			<fieldset key={at} className="mb-4 border-t border-rule pt-3">
+			<fieldset key={at} className="mb-4 min-w-0 border-t border-rule pt-3">
 				<legend className="pr-3 text-sm text-quiet">{t("brief.row", { number: format.number(at + 1) })}</legend>
 				<div className="flex flex-wrap items-end gap-x-4 gap-y-2 *:mb-0 *:max-w-full">
 					<ChoiceField
