@@ -1,6 +1,7 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import { treesByOperation } from "./frame-trees.server.ts";
 
 /** Operations that sent in for the first time within a day, counted from the opening: 0 is its first 24 hours. */
 export type AnsweredDay = { day: number; operations: number; bearingTrees: number };
@@ -14,14 +15,7 @@ export async function listAnsweredDays(
 ): Promise<AnsweredDay[]> {
 	const day = sql<number>`floor(extract(epoch from r.first_submitted_at - s.opened_at) / 86400)::int`;
 	return trx
-		.with("trees", (db) =>
-			db
-				.selectFrom("collect.frame_crop")
-				.where("survey_id", "=", surveyId)
-				.$if(cropKey !== "all", (rows) => rows.where("crop_key", "=", cropKey))
-				.groupBy("operation_id")
-				.select(["operation_id", sql<number>`sum(bearing_trees)::float8`.as("bearing_trees")]),
-		)
+		.with("trees", treesByOperation(surveyId, cropKey))
 		.selectFrom("collect.response as r")
 		.innerJoin("trees as t", "t.operation_id", "r.operation_id")
 		.innerJoin("collect.survey as s", "s.survey_id", "r.survey_id")

@@ -3,6 +3,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { CallQuery, ContactOutcome } from "./contacts.schema.ts";
 import type { Disposition } from "./frame-list.server.ts";
+import { treesByOperation } from "./frame-trees.server.ts";
 import { isWaitedFor } from "./waited-for.server.ts";
 
 const pageSize = 50;
@@ -10,13 +11,7 @@ const pageSize = 50;
 /** Operations and answers of one county's part of a stratum, in the viewer's states; who does not belong is not counted. */
 export async function listCallCells(trx: Trx, viewer: Associate, surveyId: string) {
 	return trx
-		.with("trees", (db) =>
-			db
-				.selectFrom("collect.frame_crop")
-				.where("survey_id", "=", surveyId)
-				.groupBy("operation_id")
-				.select(["operation_id", sql<number>`sum(bearing_trees)::float8`.as("bearing_trees")]),
-		)
+		.with("trees", treesByOperation(surveyId, "all"))
 		.selectFrom("collect.frame_operation as f")
 		.leftJoin("trees as t", "t.operation_id", "f.operation_id")
 		.where("f.survey_id", "=", surveyId)

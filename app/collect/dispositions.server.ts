@@ -3,6 +3,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { SizeClass } from "./frame.ts";
 import type { Disposition } from "./frame-list.server.ts";
+import { treesByOperation } from "./frame-trees.server.ts";
 
 export type DispositionCount = { disposition: Disposition; operations: number; bearingTrees: number };
 
@@ -57,14 +58,7 @@ export async function listOutcomes(
 	cropKey: string,
 ): Promise<OutcomeRow[]> {
 	return trx
-		.with("trees", (db) =>
-			db
-				.selectFrom("collect.frame_crop")
-				.where("survey_id", "=", surveyId)
-				.$if(cropKey !== "all", (rows) => rows.where("crop_key", "=", cropKey))
-				.groupBy("operation_id")
-				.select(["operation_id", sql<number>`sum(bearing_trees)::float8`.as("bearing_trees")]),
-		)
+		.with("trees", treesByOperation(surveyId, cropKey))
 		.selectFrom("collect.frame_operation as f")
 		.innerJoin("trees as t", "t.operation_id", "f.operation_id")
 		.innerJoin("directory.county as c", "c.county_fips", "f.county_fips")
