@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import { data, Form, href, redirect } from "react-router";
+import { data, Form, href, redirect, type ShouldRevalidateFunctionArgs } from "react-router";
 import type { Route } from "./+types/brief";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
@@ -67,6 +67,11 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 		return data({ values: form.values, problems: [outcome], meanwhile: false }, { status: 400 });
 	context.get(sessionContext).flash("toast", { key: "desk:brief.saved" });
 	return redirect(href("/desk/surveys/:surveyId/brief", params), 303);
+}
+
+/** Somebody else's change must be known to the page, or the next press would be refused as the last one was. */
+export function shouldRevalidate({ actionStatus, defaultShouldRevalidate }: ShouldRevalidateFunctionArgs) {
+	return actionStatus === 409 || defaultShouldRevalidate;
 }
 
 export default function BriefPage({ loaderData, actionData }: Route.ComponentProps) {

@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import { data, Form, redirect } from "react-router";
+import { data, Form, redirect, type ShouldRevalidateFunctionArgs } from "react-router";
 import { z } from "zod";
 import type { Route } from "./+types/districts";
 import { logEvent } from "#app/auth/event-log.server.ts";
@@ -137,6 +137,11 @@ const namesNow = ({ counties }: { counties: { countyFips: string; district: stri
 
 function groupingOf(names: DistrictNames, { shown, withheld, told, untold }: Omit<Grouping, "districts">): Grouping {
 	return { districts: districtsOf(names), shown, withheld, told, untold };
+}
+
+/** Somebody else's change must be known to the page, or the next press would be refused as the last one was. */
+export function shouldRevalidate({ actionStatus, defaultShouldRevalidate }: ShouldRevalidateFunctionArgs) {
+	return actionStatus === 409 || defaultShouldRevalidate;
 }
 
 export default function Districts({ loaderData, actionData }: Route.ComponentProps) {

@@ -74,9 +74,13 @@ function toastOf(taken: { outcome: "sent"; receiptCode: string } | { outcome: "l
 		: { key: `answered:enter.toast.${taken.outcome}` };
 }
 
-/** A draft kept while one types must not make the page anew under the fingers. */
-export function shouldRevalidate({ formData, defaultShouldRevalidate }: ShouldRevalidateFunctionArgs) {
-	return formData?.get("step") === "keep" ? false : defaultShouldRevalidate;
+/**
+ * A draft kept while one types must not make the page anew under the fingers. Answers that came meanwhile must be known to the
+ * page: it leads to them, and the next press is meant to go over them.
+ */
+export function shouldRevalidate({ formData, actionStatus, defaultShouldRevalidate }: ShouldRevalidateFunctionArgs) {
+	if (formData?.get("step") === "keep") return false;
+	return actionStatus === 409 || defaultShouldRevalidate;
 }
 
 /** All questions on one page, for answers told by telephone or standing on paper. */
