@@ -333,3 +333,68 @@ test("a fault says where it is", () => {
 	});
 	expect(parsed.error?.issues[0]?.path).toEqual(["screens", 0, "questions", 1, "condition"]);
 });
+
+const told = (codes: object) =>
+	({ ...base, key: "told", type: "short_text" as const, maxLength: 200, codes }) as Question;
+const several = (key: string): Question => ({
+	...base,
+	key,
+	type: "several",
+	options: [option("scab"), option("other")],
+});
+const lost = screen("lost", [percent("freeze"), percent("hail"), percent("rest"), trees("felled")]);
+const seenOf = (perPlanting: boolean) => screen("seen", [several("pests")], { perPlanting });
+const after = (codes: object, perPlanting = false) => screen("after", [told(codes)], { perPlanting });
+
+describe("what words are counted as", () => {
+	test.each<[string, Screen[]]>([
+		["other shares of a screen", [lost, after({ moves: "rest", to: ["freeze", "hail"] })]],
+		["options of plantings, told of plantings", [seenOf(true), after({ adds: "pests" }, true)]],
+		["options of the operation, told of it", [seenOf(false), after({ adds: "pests" })]],
+	])("may be %s", (_kind, screens) => expect(faults(screens)).toEqual([]));
+
+	test.each<[string, Screen[], string]>([
+		[
+			"no share that is not asked",
+			[lost, after({ moves: "deer", to: ["hail"] })],
+			'"told" moves "deer", which is no percent question',
+		],
+		[
+			"no number that is no share",
+			[lost, after({ moves: "rest", to: ["felled"] })],
+			'"told" moves to "felled", which is no other percent question of the screen of "rest"',
+		],
+		[
+			"not what it was told for",
+			[lost, after({ moves: "rest", to: ["hail", "rest"] })],
+			'"told" moves to "rest", which is no other percent question of the screen of "rest"',
+		],
+		[
+			"no share of another screen",
+			[lost, screen("more", [percent("deer")]), after({ moves: "rest", to: ["deer"] })],
+			'"told" moves to "deer", which is no other percent question of the screen of "rest"',
+		],
+		[
+			"no share of the operation where each planting has words",
+			[lost, after({ moves: "rest", to: ["hail"] }, true)],
+			'"told" and "rest", as which it counts, are not both asked of each planting',
+		],
+		[
+			"no options that are not asked",
+			[seenOf(false), after({ adds: "mites" })],
+			'"told" adds to "mites", which has no options to choose from',
+		],
+		[
+			"no options of which one alone is chosen",
+			[screen("first", [choice("seen")]), after({ adds: "seen" })],
+			'"told" adds to "seen", which has no options to choose from',
+		],
+		[
+			"no options of plantings where the operation has words",
+			[seenOf(true), after({ adds: "pests" })],
+			'"told" and "pests", as which it counts, are not both asked of each planting',
+		],
+	])("are %s", (_kind, screens, message) => {
+		expect(faults(screens)).toEqual([message]);
+	});
+});

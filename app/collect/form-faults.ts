@@ -1,5 +1,6 @@
 import { questionsIn } from "#app/lib/condition.ts";
 import { checksOf } from "./checks.ts";
+import { codeFaults } from "./code-faults.ts";
 import { conditionFaults, type Fault, type Placed } from "./condition-faults.ts";
 import type { FormDefinition, Question, Screen } from "./form.ts";
 import { measureFaults } from "./measure-faults.ts";
@@ -8,7 +9,7 @@ type Form = Pick<FormDefinition, "screens" | "measures">;
 
 /**
  * Everything that would make a form ask or count wrongly: one key for two things, a condition on a question that comes
- * later or never, shares and measures of what is no number.
+ * later or never, shares and measures of what is no number, words counted as what is not asked.
  */
 export function* faultsOf(form: Form): Generator<Fault> {
 	const placed = placeQuestions(form.screens);
@@ -21,6 +22,7 @@ export function* faultsOf(form: Form): Generator<Fault> {
 		const { question, at, path, screen } = one;
 		const asked = { what: `the condition of "${question.key}"`, before: at, perPlanting: screen.perPlanting };
 		if (question.condition) yield* conditionFaults(question.condition, asked, path, byKey);
+		yield* codeFaults(one, byKey);
 	}
 	for (const [index, measure] of form.measures.entries()) yield* measureFaults(measure, ["measures", index], byKey);
 	yield* protectedFaults(form.measures);

@@ -94,6 +94,15 @@ describe("what blocks", () => {
 		expect(codes(formOf(number("trees"), number("trees")))).toContain("key_twice");
 	});
 
+	test("words to be counted as what the form does not ask", () => {
+		const note = { ...newQuestion("note", "short_text", words("Note")), codes: { adds: "pests" } } as Question;
+		expect(findingsOf(formOf(number("trees"), note), nobody)).toContainEqual({
+			kind: "codes_wrong",
+			blocks: true,
+			questionKey: "note",
+		});
+	});
+
 	test("a question with answers that is gone or asks for something else", () => {
 		const published = FormDefinition.parse(definitionOfDraft(formOf(number("trees"), number("fruit"))));
 		const held = new Set(["trees"]);

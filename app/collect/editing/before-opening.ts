@@ -26,7 +26,7 @@ export type FindingKind =
 	| ("no_question" | "no_measure" | "too_many" | "too_long" | "untranslated" | "screen_empty")
 	| ("condition_gone" | "condition_later" | "condition_wrong" | "unreachable" | "no_figure")
 	| ("options_few" | "options_wrong" | "limits_crossed" | "check_wrong" | "sum_wrong" | "order_wrong" | "photo_wrong")
-	| ("key_twice" | "measure_wrong" | "answered_gone" | "answered_changed");
+	| ("key_twice" | "codes_wrong" | "measure_wrong" | "answered_gone" | "answered_changed");
 
 /**
  * Everything that stands between a draft and a version, and what an associate should know of it. With nothing that blocks,
@@ -157,6 +157,7 @@ function kindOfFault(path: (string | number)[], draft: FormDraft): FindingKind {
 	if (path.includes("options")) return "options_wrong";
 	if (path.includes("sumToHundred")) return "sum_wrong";
 	if (path.includes("notBefore")) return "order_wrong";
+	if (path.includes("codes")) return "codes_wrong";
 	if (path.at(-1) === "key") return "key_twice";
 	const asksPhotos = questionsOf(draft).some(({ question }) => question.type === "photo");
 	return asksPhotos ? "photo_wrong" : "key_twice";

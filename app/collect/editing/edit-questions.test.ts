@@ -114,6 +114,27 @@ describe("removing", () => {
 	});
 });
 
+describe("removing what words are counted as", () => {
+	const codesOf = (draft: FormDraft, key: string) => {
+		const question = findQuestion(draft, key)?.question;
+		return question?.type === "short_text" ? question.codes : "gone";
+	};
+
+	test("takes it from their codes, and the codes with the last of it", () => {
+		const draft = draftOfDefinition(readyForms.after_harvest);
+		expect(codesOf(draft, "other_cause")).toMatchObject({ to: expect.arrayContaining(["cause_freeze"]) });
+		const left = done(removeQuestion(draft, "cause_freeze", nobody));
+		expect(codesOf(left, "other_cause")).toEqual({
+			moves: "cause_other",
+			to: expect.not.arrayContaining(["cause_freeze"]),
+		});
+		expect(codesOf(done(removeQuestion(left, "cause_other", nobody)), "other_cause")).toBeUndefined();
+		expect(codesOf(done(removeScreen(draft, "causes", nobody)), "other_cause")).toBeUndefined();
+		const pests = done(removeQuestion(draftOfDefinition(readyForms.pests), "seen", nobody));
+		expect(codesOf(pests, "other_pest")).toBeUndefined();
+	});
+});
+
 describe("changing", () => {
 	test("lets other words of an answered question pass, and no other type, unit or lost answer", () => {
 		const draft = draftOfDefinition(readyForms.after_harvest);

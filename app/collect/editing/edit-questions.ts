@@ -1,6 +1,6 @@
 import type { Question, Screen } from "../form.ts";
 import { type FormDraft, findQuestion, findScreen, mostQuestions, questionsOf } from "./draft.ts";
-import { type Held, moved, type NotMade, withoutMeasuresOf, withScreens } from "./edit-screens.ts";
+import { type Held, moved, type NotMade, withoutWhatRestsOn, withScreens } from "./edit-screens.ts";
 import { newKey, newQuestionKey } from "./new-key.ts";
 
 export type QuestionType = Question["type"];
@@ -122,13 +122,13 @@ function allKeys(draft: FormDraft): string[] {
 	return [...questionsOf(draft).map(({ question }) => question.key), ...draft.measures.map((measure) => measure.key)];
 }
 
-/** Takes a question away with the measures made of it. What waits for it stays and is told by the check before opening. */
+/** Takes a question away with the measures made of it, and words' codes. What waits for it stays and is told by the check before opening. */
 export function removeQuestion(draft: FormDraft, key: string, held: Held): FormDraft | NotMade {
 	const found = findQuestion(draft, key);
 	if (!found) return "not_found";
 	if (held.has(key)) return "answered";
 	const left = withScreens(draft, (screen) => [screen === found.screen ? without(screen, key) : screen]);
-	return withoutMeasuresOf(left, new Set([key]));
+	return withoutWhatRestsOn(left, new Set([key]));
 }
 
 /** A screen without a question, nor what it said of that question alone: shares, an order of days, checks beside it. */

@@ -1,7 +1,7 @@
 import { quantityOf } from "../base-quantities.ts";
 import { questionsOfMeasure } from "#app/lib/measure-questions.ts";
 import type { Words } from "#app/lib/words.ts";
-import type { Check, Screen } from "../form.ts";
+import type { Check, Question, Screen } from "../form.ts";
 import { type FormDraft, findScreen } from "./draft.ts";
 import { newCheckKey, newScreenKey } from "./new-key.ts";
 
@@ -38,7 +38,7 @@ export function removeScreen(draft: FormDraft, key: string, held: Held): FormDra
 	if (!screen) return "not_found";
 	if (screen.questions.some((question) => held.has(question.key))) return "answered";
 	const gone = new Set(screen.questions.map((question) => question.key));
-	return withoutMeasuresOf(
+	return withoutWhatRestsOn(
 		withScreens(draft, (one) => (one.key === key ? [] : [one])),
 		gone,
 	);
@@ -74,9 +74,25 @@ export function withScreens(draft: FormDraft, change: (screen: Screen) => Screen
 	return { ...draft, screens: draft.screens.flatMap(change) };
 }
 
-/** Takes away the measures that are made of questions which are gone, and what others say of being made of those. */
-export function withoutMeasuresOf(draft: FormDraft, gone: ReadonlySet<string>): FormDraft {
+/** Takes away what is made of questions which are gone, and no page could mend: measures, and what words are counted as. */
+export function withoutWhatRestsOn(draft: FormDraft, gone: ReadonlySet<string>): FormDraft {
 	if (gone.size === 0) return draft;
+	const left = withScreens(draft, (screen) => [
+		{ ...screen, questions: screen.questions.map((question) => withoutCodesOf(question, gone)) },
+	]);
+	return withoutMeasuresOf(left, gone);
+}
+
+function withoutCodesOf(question: Question, gone: ReadonlySet<string>): Question {
+	if (question.type !== "short_text" || !question.codes) return question;
+	const { codes, ...rest } = question;
+	if ("adds" in codes) return gone.has(codes.adds) ? rest : question;
+	const to = codes.to.filter((key) => !gone.has(key));
+	return gone.has(codes.moves) || to.length === 0 ? rest : { ...rest, codes: { ...codes, to } };
+}
+
+/** Takes the measures away, and what others say of being made of those. */
+function withoutMeasuresOf(draft: FormDraft, gone: ReadonlySet<string>): FormDraft {
 	const isOf = (measure: FormDraft["measures"][number]) =>
 		questionsOfMeasure(measure).some((question) => gone.has(question));
 	const bases = new Set(draft.measures.filter(isOf).map(({ key }) => quantityOf(key)));
