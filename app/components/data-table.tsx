@@ -29,7 +29,7 @@ export function DataTable<Row>({ caption, columns, rows, rowKey, sort, empty, ca
 	return (
 		<section
 			aria-labelledby={captionId}
-			// Scrolled by keyboard only while in focus.
+			// Scrolled by keyboard only while in focus; holds what is only read out, which would stretch the page below it.
 			// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex
 			tabIndex={0}
 			className="relative max-h-[80vh] overflow-auto border-y-2 border-line print:max-h-none print:overflow-visible"
