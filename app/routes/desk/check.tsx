@@ -4,7 +4,7 @@ import { z } from "zod";
 import type { Route } from "./+types/check";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
-import { Notice } from "#app/components/notice.tsx";
+import { NotDone } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
@@ -80,7 +80,7 @@ export default function Check({ loaderData, actionData, params }: Route.Componen
 				</Link>
 			</p>
 			<Section title={t("finding.title", { kind: t(`kind.${finding.checkKind}`), name })}>
-				{actionData?.refused && <Refused why={actionData.refused} values={actionData.values} />}
+				{actionData?.refused && <Refused why={actionData.refused} sent={actionData} />}
 				<p className="max-w-prose text-lg">{told(finding.told, unit)}</p>
 				<p className="mt-3">
 					<FindingState finding={finding} />
@@ -108,12 +108,12 @@ export default function Check({ loaderData, actionData, params }: Route.Componen
 }
 
 /** Somebody was there first: nothing was kept, and what was typed is not lost. */
-function Refused({ why, values }: { why: string; values: Record<string, string[]> }) {
+function Refused({ why, sent }: { why: string; sent: { values: Record<string, string[]> } }) {
 	const { t } = useTranslation("checks");
 	return (
-		<Notice tone="attention" title={t(`refused.${why}.title`)}>
+		<NotDone tone="attention" answer={sent} title={t(`refused.${why}.title`)}>
 			<p>{t(`refused.${why}.body`)}</p>
-			{why === "changed" && <TypedBefore values={values} />}
-		</Notice>
+			{why === "changed" && <TypedBefore values={sent.values} />}
+		</NotDone>
 	);
 }

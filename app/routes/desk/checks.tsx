@@ -6,7 +6,7 @@ import { sessionContext } from "#app/auth/session.server.ts";
 import { Button } from "#app/components/button.tsx";
 import { classes } from "#app/components/classes.ts";
 import { Confirm } from "#app/components/confirm.tsx";
-import { Notice } from "#app/components/notice.tsx";
+import { NotDone, Notice } from "#app/components/notice.tsx";
 import { Paging } from "#app/components/paging.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { queueSurveyCheck } from "#app/jobs/check-answers.server.ts";
@@ -71,7 +71,11 @@ export default function Checks({ loaderData, actionData, params }: Route.Compone
 	return (
 		<>
 			<p className="max-w-prose">{t("queue.lead")}</p>
-			{actionData?.problem && <Notice tone="attention">{t("queue.noneChosen")}</Notice>}
+			{actionData?.problem && (
+				<NotDone tone="attention" answer={actionData}>
+					{t("queue.noneChosen")}
+				</NotDone>
+			)}
 			{undoable > 0 && query.batch && <Undo count={undoable} batch={query.batch} />}
 			<Shown show={query.show} open={format.number(open)} surveyId={params.surveyId} />
 			<QueueFilters {...loaderData} />

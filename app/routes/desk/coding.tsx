@@ -7,7 +7,7 @@ import { Button } from "#app/components/button.tsx";
 import { classes } from "#app/components/classes.ts";
 import { DataTable } from "#app/components/data-table.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
-import { Notice } from "#app/components/notice.tsx";
+import { NotDone } from "#app/components/notice.tsx";
 import { Paging } from "#app/components/paging.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
@@ -54,9 +54,9 @@ export default function CodingPage({ loaderData, actionData, params }: Route.Com
 			<Section title={t("coding.title")}>
 				<p className="max-w-prose">{t("coding.lead")}</p>
 				{actionData?.changed && (
-					<Notice tone="attention" title={t("coding.changed.title")}>
+					<NotDone tone="attention" answer={actionData} title={t("coding.changed.title")}>
 						{t("coding.changed.body")}
-					</Notice>
+					</NotDone>
 				)}
 				<nav aria-label={t("coding.show")} className="no-print my-4 flex flex-wrap gap-x-6">
 					{(["open", "done"] as const).map((show) => (
