@@ -1,4 +1,5 @@
 import type { FormDefinition, Question } from "#app/collect/form.ts";
+import { otherKey } from "#app/lib/other-option.ts";
 import { likeness, plainText } from "#app/lib/closeness.ts";
 import type { Words } from "#app/lib/words.ts";
 
@@ -33,9 +34,6 @@ export function codesOf(
 		.filter(({ key, alone, crops }) => !alone && key !== otherKey && (crops?.includes(cropKey ?? "") ?? true))
 		.map(({ key, text }) => ({ key, text }));
 }
-
-/** The option under which growers tell in words what the list lacks. */
-export const otherKey = "other";
 
 /** What growers call a cause or a pest beside its name in the form, without accents. Common speech, no source. */
 const spoken: Record<string, string[]> = {

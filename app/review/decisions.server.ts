@@ -2,6 +2,7 @@ import { sql } from "kysely";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import { answerDays } from "./edit-question.server.ts";
 import type { Finding } from "./findings.server.ts";
 import type { Act, Correction, Place } from "./reviewed-answers.ts";
 import { addStep, type FindingEnd } from "./save-findings.server.ts";
@@ -59,7 +60,7 @@ export async function noteAsked(trx: Trx, viewer: Associate, finding: Finding, m
 			edit_finding_id: findingId,
 			mailing_id: mailingId,
 			asked_by: viewer.personId,
-			expires_at: sql`now() + interval '60 days'`,
+			expires_at: sql`now() + make_interval(days => ${answerDays})`,
 		})
 		.execute();
 	await addStep(trx, { findingId, step: "asked", personId: viewer.personId });

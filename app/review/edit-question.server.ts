@@ -7,7 +7,7 @@ import type { Words } from "#app/lib/words.ts";
 import { addStep } from "./save-findings.server.ts";
 
 /** How long a grower can answer what a mail asks. */
-const answerDays = 60;
+export const answerDays = 60;
 
 /**
  * Makes the link by which the grower answers, when its mail goes out: 256 random bits, of which the hash alone is kept.

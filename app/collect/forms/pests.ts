@@ -1,11 +1,9 @@
 import type { Condition, FormDefinition, Measure, Screen } from "#app/collect/form.ts";
+import { otherKey } from "#app/lib/other-option.ts";
 import { knownTrees, knownTreesBase } from "./known-trees.ts";
 import { noteQuestion } from "./note.ts";
 import { photoScreen } from "./photos.ts";
 import { type Pest, pests as list } from "./pest-list.ts";
-
-/** The option under which growers tell in words what the list lacks. */
-const otherKey = "other";
 
 const isSeen = ({ key }: Pest): Condition => ({ compare: "=", question: "seen", to: { value: key } });
 

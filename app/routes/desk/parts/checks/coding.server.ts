@@ -3,9 +3,9 @@ import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { findSurveyForm } from "#app/collect/forms.server.ts";
-import { findSurvey } from "#app/collect/surveys.server.ts";
+import { findSurvey, isId } from "#app/collect/surveys.server.ts";
 import { codedQuestionsOf, codesOf, suggestCodes } from "#app/review/coding.ts";
-import { listToldInWords, type ToldInWords } from "#app/review/coding.server.ts";
+import { listToldInWords } from "#app/review/coding.server.ts";
 import { addCorrection, lockForDecision } from "#app/review/decisions.server.ts";
 import { takeIn } from "./decide.server.ts";
 
@@ -74,21 +74,17 @@ export async function giveCode(
 		code,
 	}: Omit<Coding, "plantingId"> & { plantingId?: string | null },
 ): Promise<"coded" | "uncoded" | "changed" | "not_found"> {
-	const find = async (): Promise<{ one: ToldInWords; isCode: boolean } | undefined> => {
-		const read = await readWords(trx, viewer, surveyId);
-		const one = read?.told.find(
-			(told) => told.responseId === responseId && told.questionKey === questionKey && told.plantingId === plantingId,
-		);
-		const question = read?.questions.find(({ key }) => key === questionKey);
-		if (!read || !one || !question) return undefined;
-		const choices = codesOf(read.definition, question, one.cropKey);
-		return { one, isCode: code === undefined || choices.some(({ key }) => key === code) };
-	};
-	const found = await find();
-	if (!found?.isCode) return "not_found";
+	if (!isId(surveyId)) return "not_found";
+	// The viewer's scope holds no row of another state, so this waits for none; what is read then nobody changes meanwhile.
 	await lockForDecision(trx, surveyId, responseId);
-	const held = (await find())?.one;
-	if (!held) return "not_found";
+	const read = await readWords(trx, viewer, surveyId);
+	const held = read?.told.find(
+		(told) => told.responseId === responseId && told.questionKey === questionKey && told.plantingId === plantingId,
+	);
+	const question = read?.questions.find(({ key }) => key === questionKey);
+	if (!read || !held || !question) return "not_found";
+	const choices = codesOf(read.definition, question, held.cropKey);
+	if (code !== undefined && !choices.some(({ key }) => key === code)) return "not_found";
 	const codes = code === undefined ? [] : [code];
 	const outcome = code === undefined ? "uncoded" : "coded";
 	if (JSON.stringify(held.codes) === JSON.stringify(codes)) return outcome;

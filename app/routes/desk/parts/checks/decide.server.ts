@@ -8,7 +8,7 @@ import { queueJob } from "#app/jobs/queue.server.ts";
 import { type KeptCorrection, listCorrections } from "#app/review/corrections.server.ts";
 import { addCorrection, endFinding, listBatch, lockForDecision, reopenFinding } from "#app/review/decisions.server.ts";
 import { type Finding, findFinding } from "#app/review/findings.server.ts";
-import { keyOf, type Place, sameSaid } from "#app/review/reviewed-answers.ts";
+import { holds, keyOf, placeOf, sameSaid } from "#app/review/reviewed-answers.ts";
 import { writeFacts } from "#app/tally/facts.server.ts";
 
 export type FindingPlace = { surveyId: string; findingId: string };
@@ -100,9 +100,8 @@ async function putCorrection(
 
 /** What counts at a place: a correction of the grower's answer, while that is what the grower says. */
 function standingAnswer(own: Answer, newest: KeptCorrection | undefined) {
-	const corrected =
-		newest?.act === "corrected" && newest.answer && "kind" in newest.answer && sameSaid(newest.was, own);
-	return corrected ? (newest.answer as Answer) : own;
+	const { act, answer } = newest && holds(newest, own) ? newest : {};
+	return act === "corrected" && answer && "kind" in answer ? answer : own;
 }
 
 async function reopen(trx: Trx, viewer: Associate, finding: Finding, surveyId: string): Promise<Decided> {
@@ -129,7 +128,7 @@ async function takeBack(
 		const own = submission?.answers.find((answer) => keyOf(answer) === keyOf(one));
 		await addCorrection(trx, viewer, {
 			responseId,
-			...placeOnly(one),
+			...placeOf(one),
 			editFindingId: findingId,
 			act: "own",
 			was: own ?? one.was,
@@ -138,10 +137,6 @@ async function takeBack(
 		});
 	}
 	return ours.length > 0;
-}
-
-function placeOnly({ questionKey, plantingId }: Place): Place {
-	return { questionKey, plantingId };
 }
 
 /** Facts, and with them the tallies, follow at once; what is odd now is looked for by queued work. */
