@@ -30,6 +30,19 @@ export function getLanguage(context: Readonly<RouterContextProvider>): Language 
 	return isLanguage(locale) ? locale : "en";
 }
 
+/**
+ * A page that a mail leads to is in the language of the mail until its visitor chooses one. Without a redirect: a mail
+ * program follows none.
+ */
+export async function speakLikeMail(
+	context: Readonly<RouterContextProvider>,
+	request: Request,
+	language: string,
+): Promise<void> {
+	const chosen: unknown = await languageCookie.parse(request.headers.get("cookie"));
+	if (!chosen && language !== getLanguage(context)) await getInstance(context).changeLanguage(language);
+}
+
 /** The translating function of a request, for what a loader or action says. */
 export function getT(context: Readonly<RouterContextProvider>, namespace: string) {
 	return getInstance(context).getFixedT(getLanguage(context), namespace);

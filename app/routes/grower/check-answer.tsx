@@ -11,10 +11,11 @@ import { DescriptionList } from "#app/components/description-list.tsx";
 import { Page } from "#app/components/page.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
-import { getInstance, getLanguage, languageCookie } from "#app/i18n/middleware.server.ts";
+import { speakLikeMail } from "#app/i18n/middleware.server.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { findAskedBy, replyToQuestion } from "#app/review/edit-question.server.ts";
+import { useAboutLabel } from "../desk/parts/checks/about-label.ts";
 import { plantingsById, showAnswer } from "../desk/parts/checks/queue.server.ts";
 
 export const handle = { bare: true };
@@ -27,19 +28,12 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	});
 	if (!found) throw await refused(request);
 	const { asked, plantings } = found;
-	// In the language of the mail until the visitor says otherwise.
-	const chosen = await languageCookie.parse(request.headers.get("cookie"));
-	if (!chosen && asked.responseLanguage !== getLanguage(context))
-		await getInstance(context).changeLanguage(asked.responseLanguage);
+	await speakLikeMail(context, request, asked.responseLanguage);
 	return {
 		title: asked.title,
 		season: asked.season,
 		operation: partOf(asked.operationName),
-		answers: asked.about.flatMap((answer) => {
-			const cropKey = plantings.get(answer.plantingId ?? "")?.cropKey ?? null;
-			const shown = showAnswer(asked.definition, answer, plantings);
-			return shown ? [{ ...shown, cropKey }] : [];
-		}),
+		answers: asked.about.flatMap((answer) => showAnswer(asked.definition, answer, plantings) ?? []),
 		reply: asked.reply,
 		isOpen: asked.isOpen,
 	};
@@ -71,14 +65,12 @@ export async function action({ params, request }: Route.ActionArgs) {
 /** One question about one answer; a press answers it. */
 export default function CheckAnswer({ loaderData, actionData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("checks");
+	const label = useAboutLabel();
 	const { title, season, operation, answers, reply, isOpen } = loaderData;
 	const survey = t("desk:surveys.name", { title: wordsIn(title, i18n.language), season });
 	const told = (
 		<DescriptionList
-			items={answers.map(({ label, shown, cropKey }) => ({
-				term: [wordsIn(label, i18n.language), cropKey && t(`common:crop.${cropKey}`)].filter(Boolean).join(" · "),
-				detail: <AnswerText shown={shown} />,
-			}))}
+			items={answers.map((answer) => ({ term: label(answer), detail: <AnswerText shown={answer.shown} /> }))}
 		/>
 	);
 	if (reply || !isOpen) {

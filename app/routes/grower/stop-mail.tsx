@@ -7,7 +7,7 @@ import { partOf } from "#app/collect/personal-link.server.ts";
 import { Button } from "#app/components/button.tsx";
 import { Page } from "#app/components/page.tsx";
 import { findMailWish, setMailWish } from "#app/directory/mail-wish.server.ts";
-import { getInstance, getLanguage, languageCookie } from "#app/i18n/middleware.server.ts";
+import { speakLikeMail } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { operationOfStopToken } from "#app/mail/stop-token.server.ts";
 
@@ -18,9 +18,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const operationId = operationOfStopToken(params.token);
 	const wish = operationId && (await scopedTransaction({ kind: "network" }, (trx) => findMailWish(trx, operationId)));
 	if (!wish) throw refusal("stop_link_not_valid");
-	// In the language of the mail until the visitor says otherwise. Without a redirect: a mail program follows none.
-	const chosen = await languageCookie.parse(request.headers.get("cookie"));
-	if (!chosen && wish.language !== getLanguage(context)) await getInstance(context).changeLanguage(wish.language);
+	await speakLikeMail(context, request, wish.language);
 	return { operation: partOf(wish.name), wanted: wish.mailWanted };
 }
 

@@ -4,7 +4,7 @@ import type { Route } from "./+types/unsubscribe";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import { Button } from "#app/components/button.tsx";
 import { Page } from "#app/components/page.tsx";
-import { getInstance, getLanguage, languageCookie } from "#app/i18n/middleware.server.ts";
+import { speakLikeMail } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { idOfToken } from "#app/mail/id-token.server.ts";
 import { findSubscriber, removeSubscriber } from "#app/publish/readership/subscribers.server.ts";
@@ -16,10 +16,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const subscriberId = idOfToken("unsubscribe", params.token);
 	if (!subscriberId) throw refusal("stop_link_not_valid");
 	const subscriber = await scopedTransaction(none, (trx) => findSubscriber(trx, subscriberId));
-	// In the language of the mail until the visitor says otherwise.
-	const chosen = await languageCookie.parse(request.headers.get("cookie"));
-	if (!chosen && subscriber && subscriber.language !== getLanguage(context))
-		await getInstance(context).changeLanguage(subscriber.language);
+	if (subscriber) await speakLikeMail(context, request, subscriber.language);
 	return { subscribed: Boolean(subscriber) };
 }
 

@@ -10,7 +10,7 @@ import { useFormat } from "#app/i18n/use-format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import { mustBeAnswered } from "./must-be-answered.ts";
 import { labelOf, QuestionField } from "../../../grower/parts/question-field.tsx";
-import { useAnswerLabel } from "./finding-answers.tsx";
+import { useAboutLabel } from "./about-label.ts";
 import type { FindingView } from "./finding-view.server.ts";
 
 export type Mode = { act: "correct" | "set_aside" | null; at: number };
@@ -53,8 +53,10 @@ function Reopen({ view }: { view: FindingView }) {
 
 function Choices({ view, sent }: Props) {
 	const { t } = useTranslation("checks");
-	const label = useAnswerLabel();
-	const correctable = view.answers.flatMap((answer, at) => (answer.question && answer.now ? [{ ...answer, at }] : []));
+	const label = useAboutLabel();
+	const correctable = view.answers.flatMap((answer, at) =>
+		answer.question && answer.now && answer.asFound ? [{ at, name: label(answer.asFound) }] : [],
+	);
 	const problem = sent?.problems.find(({ field }) => field === "words");
 	return (
 		<>
@@ -77,14 +79,14 @@ function Choices({ view, sent }: Props) {
 				</Button>
 			</Form>
 			<div className="mt-6 flex flex-wrap gap-3">
-				{correctable.map((answer) => (
-					<ButtonLink key={answer.at} kind="secondary" preventScrollReset to={`?do=correct&at=${answer.at}`}>
-						{t("act.correctOne", { label: label(answer) })}
+				{correctable.map(({ at, name }) => (
+					<ButtonLink key={at} kind="secondary" preventScrollReset to={`?do=correct&at=${at}`}>
+						{t("act.correctOne", { label: name })}
 					</ButtonLink>
 				))}
-				{correctable.map((answer) => (
-					<ButtonLink key={answer.at} kind="secondary" preventScrollReset to={`?do=set_aside&at=${answer.at}`}>
-						{t("act.setAsideOne", { label: label(answer) })}
+				{correctable.map(({ at, name }) => (
+					<ButtonLink key={at} kind="secondary" preventScrollReset to={`?do=set_aside&at=${at}`}>
+						{t("act.setAsideOne", { label: name })}
 					</ButtonLink>
 				))}
 				<Ask view={view} />
@@ -116,9 +118,10 @@ function Ask({ view }: { view: FindingView }) {
 /** Corrects one answer, or sets it aside. */
 function CloseForm({ view, mode, sent }: Props) {
 	const { t, i18n } = useTranslation("checks");
-	const label = useAnswerLabel();
+	const label = useAboutLabel();
 	const answer = view.answers[mode.at]!;
-	const { question } = answer;
+	const { question, asFound } = answer;
+	const name = asFound ? label(asFound) : "";
 	const corrects = mode.act === "correct" && question !== null;
 	const values: StepValues = Object.fromEntries(
 		Object.entries(sent?.values ?? {}).map(([name, all]) => [name, all.length === 1 ? all[0]! : all]),
@@ -132,7 +135,7 @@ function CloseForm({ view, mode, sent }: Props) {
 				<Version view={view} />
 				<input type="hidden" name="at" value={mode.at} />
 				<input type="hidden" name="seen" value={answer.seen} />
-				<p className="mb-4 font-bold">{t(corrects ? "act.correctOne" : "act.setAsideOne", { label: label(answer) })}</p>
+				<p className="mb-4 font-bold">{t(corrects ? "act.correctOne" : "act.setAsideOne", { label: name })}</p>
 				{corrects && (
 					<QuestionField
 						question={mustBeAnswered(question)}

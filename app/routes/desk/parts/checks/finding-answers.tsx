@@ -4,13 +4,14 @@ import { DataTable } from "#app/components/data-table.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { useAboutLabel } from "./about-label.ts";
 import type { FindingView } from "./finding-view.server.ts";
 import type { AboutShown } from "./queue.server.ts";
 
 /** The answers beside what the grower had told, last season's, and those of like operations. */
 export function FindingAnswers({ view }: { view: FindingView }) {
 	const { t } = useTranslation("checks");
-	const label = useAnswerLabel();
+	const label = useAboutLabel();
 	return (
 		<Section title={t("finding.answers")}>
 			<DataTable
@@ -19,7 +20,7 @@ export function FindingAnswers({ view }: { view: FindingView }) {
 				rows={view.answers.map((answer, at) => ({ ...answer, at }))}
 				rowKey={({ at }) => String(at)}
 				columns={[
-					{ key: "question", header: t("finding.question"), cell: label },
+					{ key: "question", header: t("finding.question"), cell: ({ asFound }) => asFound && label(asFound) },
 					{ key: "own", header: t("finding.own"), cell: ({ own }) => <Shown about={own} /> },
 					{
 						key: "now",
@@ -33,17 +34,6 @@ export function FindingAnswers({ view }: { view: FindingView }) {
 			<LikeOperations view={view} />
 		</Section>
 	);
-}
-
-/** What a place is called: the question, and where several plantings are spoken of the planting too. */
-export function useAnswerLabel() {
-	const { t, i18n } = useTranslation();
-	return ({ asFound, planting }: Pick<FindingView["answers"][number], "asFound" | "planting">): string => {
-		const question = asFound ? wordsIn(asFound.label, i18n.language) : "";
-		if (!planting) return question;
-		const crop = t(`crop.${planting.cropKey}`);
-		return `${question} (${planting.cultivar ? `${crop}: ${planting.cultivar}` : crop})`;
-	};
 }
 
 function Shown({ about }: { about: AboutShown | undefined }) {

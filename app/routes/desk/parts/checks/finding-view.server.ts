@@ -8,7 +8,7 @@ import { quantileOf } from "#app/lib/order-statistics.ts";
 import { listCorrectionHistory, listCorrections } from "#app/review/corrections.server.ts";
 import { type Finding, findFinding, listSteps } from "#app/review/findings.server.ts";
 import { quantitiesOf, sizeOf, type ToldQuantity } from "#app/review/odd-quantities.ts";
-import { type Correction, keyOf, reviewAnswers } from "#app/review/reviewed-answers.ts";
+import { type Correction, keyOf, placeOf, reviewAnswers } from "#app/review/reviewed-answers.ts";
 import { findLastSurvey, listToldQuantities } from "#app/review/told-quantities.server.ts";
 import { readDraftInputs } from "../estimates/draft-estimates.server.ts";
 import { listMovedEstimates } from "./moved-estimates.server.ts";
@@ -46,7 +46,7 @@ export async function viewFinding(
 			const before = last.find((one) => keyOf(one) === at);
 			const question = findQuestion(definition, about.questionKey);
 			return {
-				place: { questionKey: about.questionKey, plantingId: about.plantingId },
+				place: placeOf(about),
 				planting: plantings.get(about.plantingId ?? "") ?? null,
 				question: question ?? null,
 				/** The grower's own answer, as a decision names it. */
@@ -72,10 +72,6 @@ export async function viewFinding(
 	};
 }
 export type FindingView = NonNullable<Awaited<ReturnType<typeof viewFinding>>>;
-
-function placeOf({ questionKey, plantingId }: Pick<Answer, "questionKey" | "plantingId">) {
-	return { questionKey, plantingId };
-}
 
 async function readFinding(trx: Trx, viewer: Associate, surveyId: string, findingId: string) {
 	const inputs = await readDraftInputs(trx, viewer, surveyId);

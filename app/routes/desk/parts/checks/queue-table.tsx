@@ -4,10 +4,10 @@ import { AnswerText } from "#app/components/answer-list.tsx";
 import { type Column, DataTable } from "#app/components/data-table.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
-import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { FindingsQuery } from "#app/review/findings.schema.ts";
 import { useGrowerName } from "../grower-name.ts";
+import { useAboutLabel } from "./about-label.ts";
 import { useMovedWords, useToldWords } from "./finding-words.ts";
 import type { QueueRow } from "./queue.server.ts";
 
@@ -93,12 +93,14 @@ function Grower({ row, surveyId, canChoose }: GrowerProps) {
 }
 
 function Answers({ row: { shown } }: { row: QueueRow }) {
-	const { i18n } = useTranslation();
+	const label = useAboutLabel();
 	return (
 		<ul className="min-w-40">
-			{shown.map(({ at, label, shown: answer }) => (
-				<li key={at}>
-					<span className="text-quiet">{wordsIn(label, i18n.language)}:</span> <AnswerText shown={answer} />
+			{shown.map((about) => (
+				<li key={about.at}>
+					{/* A lone planting stands below the operation's name. */}
+					<span className="text-quiet">{label(shown.length > 1 ? about : { ...about, planting: null })}:</span>{" "}
+					<AnswerText shown={about.shown} />
 				</li>
 			))}
 		</ul>

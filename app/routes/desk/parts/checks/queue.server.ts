@@ -13,7 +13,12 @@ import { keyOf } from "#app/review/reviewed-answers.ts";
 import { countOpenFindings, type Finding, listFindings } from "#app/review/findings.server.ts";
 
 /** One odd answer as a row tells it. */
-export type AboutShown = { at: string; label: Words; shown: ShownAnswer };
+export type AboutShown = {
+	at: string;
+	label: Words;
+	shown: ShownAnswer;
+	planting: Pick<PlantingAsked, "cropKey" | "cultivar"> | null;
+};
 /** The measure whose figure moves, for its words and unit. */
 export type MovedMeasure = Pick<Measure, "key" | "label" | "unit" | "decimals">;
 
@@ -67,7 +72,12 @@ export function showAnswer(
 	const question = findQuestion(definition, answer.questionKey);
 	const planting = plantings.get(answer.plantingId ?? "") ?? null;
 	if (!question) return undefined;
-	return { at: keyOf(answer), label: question.label ?? question.text, shown: shownAs(question, answer, planting) };
+	return {
+		at: keyOf(answer),
+		label: question.label ?? question.text,
+		shown: shownAs(question, answer, planting),
+		planting: planting && { cropKey: planting.cropKey, cultivar: planting.cultivar },
+	};
 }
 
 /** What a finding's own numbers are counted in: the kept unit of its question. */

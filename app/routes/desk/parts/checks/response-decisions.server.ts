@@ -36,7 +36,6 @@ export async function listResponseDecisions(trx: Trx, surveyId: string, response
 					act,
 					told,
 					put: put ?? null,
-					cropKey,
 					findingId: editFindingId,
 					codes: choices.filter(({ key }) => keys.includes(key)).map(({ text }) => text),
 				},

@@ -5,14 +5,16 @@ import { DataTable } from "#app/components/data-table.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { useAboutLabel } from "./about-label.ts";
 import type { ResponseDecision } from "./response-decisions.server.ts";
 
 type ResponseDecisionsProps = { decisions: ResponseDecision[]; surveyId: string; timeZone: string };
 
 /** What counts in the place of a grower's answers, above the answers as they were told. */
 export function ResponseDecisions({ decisions, surveyId, timeZone }: ResponseDecisionsProps) {
-	const { t, i18n } = useTranslation("checks");
+	const { t } = useTranslation("checks");
 	const format = useFormat();
+	const label = useAboutLabel();
 	if (decisions.length === 0) return null;
 	return (
 		<Section title={t("response.title")} level={3}>
@@ -23,12 +25,7 @@ export function ResponseDecisions({ decisions, surveyId, timeZone }: ResponseDec
 				rows={decisions}
 				rowKey={({ number }) => String(number)}
 				columns={[
-					{
-						key: "question",
-						header: t("finding.question"),
-						cell: ({ told, cropKey }) =>
-							[wordsIn(told.label, i18n.language), cropKey && t(`common:crop.${cropKey}`)].filter(Boolean).join(" · "),
-					},
+					{ key: "question", header: t("finding.question"), cell: ({ told }) => label(told) },
 					{ key: "own", header: t("finding.own"), cell: ({ told }) => <AnswerText shown={told.shown} /> },
 					{ key: "put", header: t("response.put"), cell: (row) => <Put decision={row} /> },
 					{
