@@ -25,7 +25,9 @@ export function Notice({ tone, title, children }: NoticeProps) {
  */
 export function NotDone({ answer, ...notice }: NoticeProps & { answer: unknown }) {
 	const box = useRef<HTMLDivElement>(null);
-	useEffect(() => box.current?.focus(), [answer]);
+	useEffect(() => {
+		if (answer) box.current?.focus();
+	}, [answer]);
 	return (
 		<div ref={box} tabIndex={-1} role="alert">
 			<Notice {...notice} />

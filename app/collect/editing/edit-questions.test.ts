@@ -114,12 +114,12 @@ describe("removing", () => {
 	});
 });
 
-describe("removing what words are counted as", () => {
-	const codesOf = (draft: FormDraft, key: string) => {
-		const question = findQuestion(draft, key)?.question;
-		return question?.type === "short_text" ? question.codes : "gone";
-	};
+const codesOf = (draft: FormDraft, key: string) => {
+	const question = findQuestion(draft, key)?.question;
+	return question?.type === "short_text" ? question.codes : "gone";
+};
 
+describe("removing what words are counted as", () => {
 	test("takes it from their codes, and the codes with the last of it", () => {
 		const draft = draftOfDefinition(readyForms.after_harvest);
 		expect(codesOf(draft, "other_cause")).toMatchObject({ to: expect.arrayContaining(["cause_freeze"]) });

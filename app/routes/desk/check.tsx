@@ -7,6 +7,7 @@ import { sessionContext } from "#app/auth/session.server.ts";
 import { NotDone } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { Decision } from "#app/review/findings.schema.ts";
@@ -64,6 +65,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 			return data({ ...nothing, refused: taken.outcome }, { status: 409 });
 	}
 }
+
+export const shouldRevalidate = lookAgain;
 
 /** One odd answer, what it stands beside, and what to do about it. */
 export default function Check({ loaderData, actionData, params }: Route.ComponentProps) {

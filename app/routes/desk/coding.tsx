@@ -12,6 +12,7 @@ import { Paging } from "#app/components/paging.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { Coding, CodingQuery, type CodingRow, giveCode, readCoding } from "./parts/checks/coding.server.ts";
@@ -36,6 +37,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const { search } = new URL(request.url);
 	return redirect(`${href("/desk/surveys/:surveyId/coding", params)}${search}`, 303);
 }
+
+export const shouldRevalidate = lookAgain;
 
 /** What growers told in words, to be counted under a code. */
 export default function CodingPage({ loaderData, actionData, params }: Route.ComponentProps) {

@@ -121,7 +121,7 @@ function CloseForm({ view, mode, sent }: Props) {
 	const label = useAboutLabel();
 	const answer = view.answers[mode.at]!;
 	const { question, asFound } = answer;
-	const name = asFound ? label(asFound) : "";
+	const called = asFound ? label(asFound) : "";
 	const corrects = mode.act === "correct" && question !== null;
 	const values: StepValues = Object.fromEntries(
 		Object.entries(sent?.values ?? {}).map(([name, all]) => [name, all.length === 1 ? all[0]! : all]),
@@ -135,7 +135,7 @@ function CloseForm({ view, mode, sent }: Props) {
 				<Version view={view} />
 				<input type="hidden" name="at" value={mode.at} />
 				<input type="hidden" name="seen" value={answer.seen} />
-				<p className="mb-4 font-bold">{t(corrects ? "act.correctOne" : "act.setAsideOne", { label: name })}</p>
+				<p className="mb-4 font-bold">{t(corrects ? "act.correctOne" : "act.setAsideOne", { label: called })}</p>
 				{corrects && (
 					<QuestionField
 						question={mustBeAnswered(question)}
