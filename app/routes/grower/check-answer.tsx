@@ -8,6 +8,7 @@ import { partOf } from "#app/collect/personal-link.server.ts";
 import { AnswerText } from "#app/components/answer-list.tsx";
 import { Button } from "#app/components/button.tsx";
 import { DescriptionList } from "#app/components/description-list.tsx";
+import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Page } from "#app/components/page.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
@@ -84,6 +85,7 @@ export default function CheckAnswer({ loaderData, actionData }: Route.ComponentP
 	const typed = actionData?.values as { words?: string } | undefined;
 	return (
 		<Page title={t("ask.title")} lead={t("ask.lead", { survey, operation })}>
+			<ErrorSummary problems={actionData?.problems} labels={{}} />
 			{told}
 			<Form method="post" className="mt-6">
 				<Button name="reply" value="right">
