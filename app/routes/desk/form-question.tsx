@@ -62,6 +62,9 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	return redirect(href("/desk/forms/:formId/questions/:key", { formId, key: made.key ?? params.key }), 303);
 }
 
+/** A refusal loads anew too, so that what was changed meanwhile has been seen when one saves again. */
+export const shouldRevalidate = () => true;
+
 /** @returns 409 for what cannot be done now, 400 for what is to be mended. `of` is the question that it was typed for. */
 function answer(refused: NotChanged | null, values: Fields, problems: Problem[], of: string) {
 	return data({ refused, values, problems, of }, { status: refused ? 409 : 400 });

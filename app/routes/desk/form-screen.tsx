@@ -63,6 +63,9 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	return redirect(href("/desk/forms/:formId/screens/:key", params), 303);
 }
 
+/** A refusal loads anew too, so that what was changed meanwhile has been seen when one saves again. */
+export const shouldRevalidate = () => true;
+
 /** @returns 409 for what cannot be done now, 400 for what is to be mended. */
 function answer(refused: NotChanged | null, values: Fields, problems: Problem[]) {
 	return data({ refused, values, problems }, { status: refused ? 409 : 400 });
