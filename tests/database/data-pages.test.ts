@@ -10,6 +10,7 @@ import { loader as fileLoader } from "#app/routes/dataroom/file.ts";
 import { loader as citeLoader } from "#app/routes/public/cite.ts";
 import { loader as releaseLoader } from "#app/routes/public/data-release.tsx";
 import { loader as catalogueLoader } from "#app/routes/public/data.tsx";
+import { loader as reportLoader } from "#app/routes/public/report.tsx";
 import { createTestDatabase, type TestDatabase } from "#tests/helpers/database.ts";
 import { addRelease } from "./publish-fixture.ts";
 import { addReleaseWithFiles } from "./released-files-fixture.ts";
@@ -59,6 +60,7 @@ const page = (number: number) => run(releaseLoader, { params: { release: `${numb
 const found = async (search: string) =>
 	(await run(catalogueLoader, { search })).rows.map(({ release }) => release.number);
 const take = (file: string, researcher?: boolean) => run(fileLoader, { params: { ...ofRelease(), file }, researcher });
+const reportSent = async () => JSON.stringify(await run(reportLoader, { params: { slug: "early-plums" } }));
 const taken = async () => (await owner.query("select file_key from log.download")).rows;
 
 test("a release's page tells its files with size and checksum, to people and to machines", async () => {
@@ -162,4 +164,21 @@ test("a key is told once, when it is made, and what was typed is not lost when i
 	expect(listed.keys).toMatchObject([{ label: "Notebook", scopes: ["figures"], keyStart: told.key!.slice(0, 10) }]);
 	expect(JSON.stringify(listed)).not.toContain(told.key);
 	expect((await run(keysLoader, { researcher: false })).keys).toEqual([]);
+});
+
+test("of a report whose figures were withdrawn no word leaves the server", async () => {
+	const { releaseId } = await addRelease(owner, 2037);
+	const words = { en: "Frost took the early plums.", es: "La helada se llevó las ciruelas." };
+	await owner.query(
+		`insert into publish.report (slug, release_id, state, content, created_by, author_name, published_by, published_at)
+		values ('early-plums', $1, 'published', $2, $3, 'Jonas Weir', gen_random_uuid(), now())`,
+		[releaseId, JSON.stringify({ title: words, summary: words, blocks: [] }), personId],
+	);
+	expect(await reportSent()).toContain(words.en);
+	await owner.query(
+		`insert into release.withdrawal (release_id, reason) values ($1, '{"en": "Wrong.", "es": "Mal."}')`,
+		[releaseId],
+	);
+	expect(await reportSent()).toContain("Wrong.");
+	expect(await reportSent()).not.toContain("plums");
 });

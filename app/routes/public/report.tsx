@@ -28,6 +28,8 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const report = await findPublishedReport(params.slug, version);
 	const release = report && (await findReleaseById(report.releaseId));
 	if (!report || !release) throw refusal("report_not_found");
+	// The report's own words speak of figures that are gone: none of them leaves the server.
+	if (release.withdrawn) return { withdrawn: release, page: null };
 	const [told, versions, files] = await Promise.all([
 		resolveReport(report.content, release),
 		listVersions(report.slug),
@@ -49,48 +51,54 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	});
 	const { slug, authorName, publishedAt, correction } = report;
 	return {
-		report: { slug, authorName, version: report.version, publishedAt, correction },
-		release,
-		told,
-		versions,
-		files,
-		address,
-		described: release.withdrawn ? null : described,
+		withdrawn: null,
+		page: {
+			report: { slug, authorName, version: report.version, publishedAt, correction },
+			release,
+			told,
+			versions,
+			files,
+			address,
+			described,
+		},
 	};
 }
 
 /** What machines read of the report, and where its feed is. */
 export function meta({ loaderData }: Route.MetaArgs) {
 	const feed = { tagName: "link", rel: "alternate", type: "application/atom+xml", href: "/reports.atom" };
-	return loaderData?.described ? [feed, { "script:ld+json": loaderData.described }] : [feed];
+	return loaderData?.page ? [feed, { "script:ld+json": loaderData.page.described }] : [feed];
 }
 
-export default function Report({ loaderData }: Route.ComponentProps) {
+export default function Report({ loaderData: { withdrawn, page } }: Route.ComponentProps) {
+	return page ? <ReportPage {...page} /> : <WithdrawnReport release={withdrawn} />;
+}
+
+type PartProps = NonNullable<Route.ComponentProps["loaderData"]["page"]>;
+
+function ReportPage(page: PartProps) {
 	const { t } = useTranslation("public");
 	const format = useFormat();
 	const toldText = useToldText();
-	const { told, release, report } = loaderData;
+	const { told, release, report } = page;
 	const { number } = release;
-	if (release.withdrawn) return <WithdrawnReport release={release} />;
 	return (
-		<Page title={toldText(told.title)} lead={<ToldText told={told.summary} />} actions={<Files {...loaderData} />}>
+		<Page title={toldText(told.title)} lead={<ToldText told={told.summary} />} actions={<Files {...page} />}>
 			<article className="report max-w-4xl">
 				<p className="border-y border-rule py-3 text-sm text-quiet">
 					{t("report.byline", { date: format.dayOf(report.publishedAt), author: report.authorName })}{" "}
 					{t("report.version", { version: report.version, number })}
 				</p>
 				<ReleaseNotice release={release} />
-				<Corrections {...loaderData} />
+				<Corrections {...page} />
 				<div className="mt-6">
 					<ReportBlocks blocks={told.blocks} season={told.season} picture={told.picture} />
 				</div>
-				<ReportFooter {...loaderData} />
+				<ReportFooter {...page} />
 			</article>
 		</Page>
 	);
 }
-
-type PartProps = Route.ComponentProps["loaderData"];
 
 /** The report as files, and by mail. */
 function Files({ report, files }: PartProps) {
@@ -191,7 +199,7 @@ function VersionList({ slug, versions }: { slug: string; versions: PartProps["ve
 }
 
 /** Its own words speak of figures that are gone, so only its release is named. */
-function WithdrawnReport({ release }: Pick<Route.ComponentProps["loaderData"], "release">) {
+function WithdrawnReport({ release }: Pick<PartProps, "release">) {
 	const { t, i18n } = useTranslation("public");
 	const { number, season, title } = release;
 	return (
