@@ -13,10 +13,6 @@ export async function listFiles(releaseId: string): Promise<FileFacts[]> {
 		.execute();
 }
 
-export async function findFile(releaseId: string, name: string): Promise<FileFacts | undefined> {
-	return (await listFiles(releaseId)).find((file) => file.name === name);
-}
-
 /** Bytes of a file from `first` to `last`, both counted from 0 and included. */
 export async function readFilePart(
 	releaseId: string,

@@ -11,6 +11,7 @@ import type { Operation } from "#app/publish/api/operations.ts";
 import { ApiProblem, problemBody, problemStatus } from "#app/publish/api/problem.ts";
 import { readRequest } from "#app/publish/api/read-request.ts";
 import { matches } from "#app/publish/cached-json.server.ts";
+import { csvType } from "#app/publish/files/release-file.ts";
 
 type Args = {
 	request: Request;
@@ -94,7 +95,6 @@ function typeOf(request: Request, { types }: Operation): string {
 
 /** A minute's copy, then asked for anew by its tag: a release that is withdrawn must soon be nowhere. */
 const caching = "public, max-age=60, stale-while-revalidate=300";
-const csvType = "text/csv; charset=utf-8; header=present";
 
 async function tagged(
 	{ version, body }: Extract<Answer, { version: string }>,
