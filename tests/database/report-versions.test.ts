@@ -230,3 +230,22 @@ test("nothing of a draft is a reader's: no row, no file, no comment, no earlier 
 	await decide(reportId, { intent: "publish" });
 	expect(await findReportFile(reportId, "en")).toEqual(bytes);
 });
+
+// The last test of the file, as a withdrawal stays.
+test("the printed report of a release that was withdrawn is no reader's any more, though it is there", async () => {
+	const reportId = await handIn("Withdrawn");
+	await desk((trx) => keepReportFile(trx, reportId, "en", { bytes: Buffer.from("%PDF-1.7 with figures") }));
+	await decide(reportId, { intent: "publish" });
+	await using reader = await connectOwner(database.readerUrl);
+	const seen = async () =>
+		(await reader.query("select 1 from publish.report_file where report_id = $1", [reportId])).rowCount;
+	expect(await seen()).toBe(1);
+	await owner.query(
+		`insert into release.withdrawal (release_id, reason)
+		select release_id, '{"en": "Wrong.", "es": "Mal."}' from publish.report where report_id = $1`,
+		[reportId],
+	);
+	expect(await seen()).toBe(0);
+	expect(await findReportFile(reportId, "en")).toBeUndefined();
+	expect(await count(owner, "publish.report_file where report_id = $1", [reportId])).toBe(1);
+});

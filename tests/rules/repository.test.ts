@@ -107,6 +107,18 @@ describe("routes", () => {
 		expect(guarded.flatMap((file) => unguarded(file, sources, guards[areaOf(file)]!))).toEqual([]);
 	});
 
+	test("a page that can answer with a conflict looks again at what stands, unless it is drawn anew anyway", () => {
+		const conflicts = [...sources].filter(
+			([file, text]) => routes.includes(file) && file.endsWith(".tsx") && /\b409\b/.test(text),
+		);
+		expect(conflicts.length).toBeGreaterThan(15);
+		const stale = conflicts.filter(
+			([, text]) =>
+				!text.includes("handle = { bare: true }") && !/export (const|function) shouldRevalidate\b/.test(text),
+		);
+		expect(stale.map(([file]) => file)).toEqual([]);
+	});
+
 	test("every route that asks nobody is there, and does", () => {
 		const without = Object.keys(asksNobody).filter(
 			(file) => unguarded(file, sources, guards[areaOf(file)]!).length > 0,

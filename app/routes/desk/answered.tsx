@@ -10,6 +10,7 @@ import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TallyCount } from "#app/components/tally-count.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { AnsweredCurve } from "./parts/answered/answered-curve.tsx";
@@ -46,6 +47,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", { key: `answered:late.toast.${outcome}` });
 	return redirect(href("/desk/surveys/:surveyId/answered", params), 303);
 }
+
+export const shouldRevalidate = lookAgain;
 
 /** How many have answered, of whom, and how that came about from day to day. */
 export default function Answered({ loaderData: { rates, late }, actionData, params }: Route.ComponentProps) {

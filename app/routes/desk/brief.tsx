@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import { data, Form, href, redirect, type ShouldRevalidateFunctionArgs } from "react-router";
+import { data, Form, href, redirect } from "react-router";
 import type { Route } from "./+types/brief";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
@@ -14,6 +14,7 @@ import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { readPlanKept } from "./parts/brief/plan-kept.server.ts";
@@ -69,10 +70,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	return redirect(href("/desk/surveys/:surveyId/brief", params), 303);
 }
 
-/** Somebody else's change must be known to the page, or the next press would be refused as the last one was. */
-export function shouldRevalidate({ actionStatus, defaultShouldRevalidate }: ShouldRevalidateFunctionArgs) {
-	return actionStatus === 409 || defaultShouldRevalidate;
-}
+export const shouldRevalidate = lookAgain;
 
 export default function BriefPage({ loaderData, actionData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("desk");

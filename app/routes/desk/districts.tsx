@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import { data, Form, redirect, type ShouldRevalidateFunctionArgs } from "react-router";
+import { data, Form, redirect } from "react-router";
 import { z } from "zod";
 import type { Route } from "./+types/districts";
 import { logEvent } from "#app/auth/event-log.server.ts";
@@ -17,6 +17,7 @@ import { findStateDistricts, redrawDistricts, undoRedrawing } from "#app/directo
 import { type DistrictNames, districtProblems, districtsOf, nameDistricts } from "#app/directory/districts.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm, type Problem } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { countGrouping, type DistrictProposal, proposeDistricts } from "#app/protect/districts.ts";
@@ -139,10 +140,7 @@ function groupingOf(names: DistrictNames, { shown, withheld, told, untold }: Omi
 	return { districts: districtsOf(names), shown, withheld, told, untold };
 }
 
-/** Somebody else's change must be known to the page, or the next press would be refused as the last one was. */
-export function shouldRevalidate({ actionStatus, defaultShouldRevalidate }: ShouldRevalidateFunctionArgs) {
-	return actionStatus === 409 || defaultShouldRevalidate;
-}
+export const shouldRevalidate = lookAgain;
 
 export default function Districts({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("districts");

@@ -9,6 +9,7 @@ import { listAllSteps } from "#app/collect/steps.ts";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { Section } from "#app/components/section.tsx";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { readPosted } from "../grower/parts/posted.server.ts";
 import { EntryForm } from "./parts/entry/entry-form.tsx";
@@ -78,9 +79,8 @@ function toastOf(taken: { outcome: "sent"; receiptCode: string } | { outcome: "l
  * A draft kept while one types must not make the page anew under the fingers. Answers that came meanwhile must be known to the
  * page: it leads to them, and the next press is meant to go over them.
  */
-export function shouldRevalidate({ formData, actionStatus, defaultShouldRevalidate }: ShouldRevalidateFunctionArgs) {
-	if (formData?.get("step") === "keep") return false;
-	return actionStatus === 409 || defaultShouldRevalidate;
+export function shouldRevalidate(move: ShouldRevalidateFunctionArgs) {
+	return move.formData?.get("step") !== "keep" && lookAgain(move);
 }
 
 /** All questions on one page, for answers told by telephone or standing on paper. */

@@ -10,6 +10,7 @@ import { Confirm } from "#app/components/confirm.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { Differences } from "./parts/forms/differences.tsx";
@@ -43,6 +44,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", { key: `forms:toast.${outcome.outcome}`, values: { version } });
 	return redirect(href("/desk/forms/:formId/versions", params), 303);
 }
+
+export const shouldRevalidate = lookAgain;
 
 /** What is to be mended before the form is asked, then what to think about, and the button that freezes a version. */
 export default function FormCheck({ loaderData, actionData, params }: Route.ComponentProps) {

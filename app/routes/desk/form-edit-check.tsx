@@ -13,6 +13,7 @@ import { ChoiceField } from "#app/components/choice-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Section } from "#app/components/section.tsx";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm, type Problem } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { ConditionFields, useConditionLabels } from "./parts/forms/condition-fields.tsx";
@@ -56,8 +57,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	return redirect(href("/desk/forms/:formId/screens/:key", params), 303);
 }
 
-/** A refusal loads anew too, so that what was changed meanwhile has been seen when one saves again. */
-export const shouldRevalidate = () => true;
+export const shouldRevalidate = lookAgain;
 
 /** @returns 409 for what cannot be done now, 400 for what is to be mended. */
 function answer(refused: NotChanged | null, values: Fields, problems: Problem[]) {

@@ -11,6 +11,7 @@ import { EmptyState } from "#app/components/empty-state.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { questionsOfMeasure } from "#app/lib/measure-questions.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -56,6 +57,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", { key: "forms:toast.saved" });
 	return redirect(href("/desk/forms/:formId/measures", params), 303);
 }
+
+export const shouldRevalidate = lookAgain;
 
 /** What the survey will estimate: of the questions that nothing was declared for, by default. Names can be changed. */
 export default function FormMeasures({ loaderData, actionData }: Route.ComponentProps) {

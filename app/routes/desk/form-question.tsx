@@ -15,6 +15,7 @@ import {
 import type { Question } from "#app/collect/form.ts";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { questionsOfMeasure } from "#app/lib/measure-questions.ts";
 import { parseForm, type Problem } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -62,8 +63,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	return redirect(href("/desk/forms/:formId/questions/:key", { formId, key: made.key ?? params.key }), 303);
 }
 
-/** A refusal loads anew too, so that what was changed meanwhile has been seen when one saves again. */
-export const shouldRevalidate = () => true;
+export const shouldRevalidate = lookAgain;
 
 /** @returns 409 for what cannot be done now, 400 for what is to be mended. `of` is the question that it was typed for. */
 function answer(refused: NotChanged | null, values: Fields, problems: Problem[], of: string) {

@@ -10,6 +10,7 @@ import { fieldsOfScreen, readScreenFields, ScreenFields as Fields } from "#app/c
 import type { Screen } from "#app/collect/form.ts";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm, type Problem } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { CheckList } from "./parts/forms/check-list.tsx";
@@ -63,8 +64,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	return redirect(href("/desk/forms/:formId/screens/:key", params), 303);
 }
 
-/** A refusal loads anew too, so that what was changed meanwhile has been seen when one saves again. */
-export const shouldRevalidate = () => true;
+export const shouldRevalidate = lookAgain;
 
 /** @returns 409 for what cannot be done now, 400 for what is to be mended. */
 function answer(refused: NotChanged | null, values: Fields, problems: Problem[]) {

@@ -17,6 +17,7 @@ import { EmptyState } from "#app/components/empty-state.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { useFormWords } from "./parts/forms/condition-words.ts";
@@ -53,6 +54,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", { key: toast });
 	return redirect(href("/desk/forms/:formId/versions", params), 303);
 }
+
+export const shouldRevalidate = lookAgain;
 
 /** What was published when, what each version changed, and which surveys ask it. */
 export default function FormVersions({ loaderData, actionData, params }: Route.ComponentProps) {

@@ -8,6 +8,7 @@ import { addQuestion, moveQuestion, questionTypes } from "#app/collect/editing/e
 import { addScreen, moveScreen } from "#app/collect/editing/edit-screens.ts";
 import { SomeText } from "#app/collect/editing/question.schema.ts";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { AddParts, DropForm, TitleForm, useAddLabels } from "./parts/forms/add-parts.tsx";
@@ -92,6 +93,8 @@ function addressAfter(step: EditStep, formId: string, added = ""): string {
 	if (step.intent === "move") return `${here}#${step.what.replace(/:(up|down):/, "-")}`;
 	return step.intent === "add_screen" ? `${here}#screen-${added}` : here;
 }
+
+export const shouldRevalidate = lookAgain;
 
 export default function FormPage({ loaderData, actionData, params }: Route.ComponentProps) {
 	const { t } = useTranslation("forms");

@@ -22,6 +22,7 @@ import { StatusBadge } from "#app/components/status-badge.tsx";
 import { mendAddress } from "#app/directory/mail-address.server.ts";
 import { findOperation } from "#app/directory/operations.server.ts";
 import { findWaiver, recordWaiver } from "#app/directory/waiver.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { MergedNotice } from "./parts/merging/merged-notice.tsx";
@@ -102,6 +103,8 @@ async function mend(trx: Trx, viewer: Associate, operationId: string, email: str
 	if (mended === "mended") await markReachable(trx, operationId);
 	return { mended };
 }
+
+export const shouldRevalidate = lookAgain;
 
 export default function GrowerPage({ loaderData, actionData }: Route.ComponentProps) {
 	const { operation, surveys, people, contacts, waiver } = loaderData;

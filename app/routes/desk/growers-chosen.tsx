@@ -10,6 +10,7 @@ import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { queryParts } from "#app/directory/operation.schema.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { actOnGrowers, BulkStep } from "./parts/growers/bulk-steps.server.ts";
@@ -63,6 +64,8 @@ export async function action({ context, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", outcome.toast);
 	return redirect(`${href("/desk/growers")}?${new URLSearchParams(queryParts(choice.query))}`, 303);
 }
+
+export const shouldRevalidate = lookAgain;
 
 export default function GrowersChosen({ loaderData, actionData }: Route.ComponentProps) {
 	const { count, names, back } = loaderData;

@@ -13,6 +13,7 @@ import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { listLikelyPairs, listMerges, setApart } from "#app/directory/merging/duplicates.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { undoMerge } from "./parts/merging/merge-steps.server.ts";
@@ -46,6 +47,8 @@ export async function action({ context, request }: Route.ActionArgs) {
 }
 
 type Data = Route.ComponentProps["loaderData"];
+
+export const shouldRevalidate = lookAgain;
 
 export default function GrowersDuplicates({ loaderData, actionData }: Route.ComponentProps) {
 	const { pairs, total, merges } = loaderData;

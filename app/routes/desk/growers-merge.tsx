@@ -14,6 +14,7 @@ import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { type MergeField, mergeFields } from "#app/directory/merging/merge.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { findRefusal, merge } from "./parts/merging/merge-steps.server.ts";
@@ -60,6 +61,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 }
 
 type Grower = Route.ComponentProps["loaderData"]["kept"];
+
+export const shouldRevalidate = lookAgain;
 
 /** Two growers side by side, and what one would be of both. Nothing is merged before the last button. */
 export default function GrowersMerge({ loaderData }: Route.ComponentProps) {

@@ -10,6 +10,7 @@ import { Section } from "#app/components/section.tsx";
 import { languages } from "#app/i18n/language.ts";
 import { queueJob } from "#app/jobs/queue.server.ts";
 import { readSample } from "./parts/sample.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 
 export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
@@ -30,6 +31,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", { key: "desk:mailing.toast.sample", values: { email } });
 	return redirect(`${href("/desk/surveys/:surveyId/mailing/:kind", params)}?in=${language}`, 303);
 }
+
+export const shouldRevalidate = lookAgain;
 
 export default function MailPreview({ loaderData, actionData, params }: Route.ComponentProps) {
 	const { t } = useTranslation("desk");

@@ -11,6 +11,7 @@ import { findSurvey } from "#app/collect/surveys.server.ts";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { letterKinds } from "#app/mail/templates.ts";
@@ -53,6 +54,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", { key: "desk:mailing.toast.set" });
 	return redirect(href("/desk/surveys/:surveyId/mailing", params), 303);
 }
+
+export const shouldRevalidate = lookAgain;
 
 export default function Mailing({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("desk");

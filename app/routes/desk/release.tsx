@@ -21,6 +21,7 @@ import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { readNetworkRules } from "#app/jobs/network-rules.server.ts";
 import { queueJob } from "#app/jobs/queue.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { type FormValues, parseForm, type Problem } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import type { Words } from "#app/lib/words.ts";
@@ -92,6 +93,8 @@ async function stopDraft(trx: Trx, viewer: Associate, surveyId: string) {
 	}
 	return stopped.outcome;
 }
+
+export const shouldRevalidate = lookAgain;
 
 export default function ReleasePage({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("release");

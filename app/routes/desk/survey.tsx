@@ -20,6 +20,7 @@ import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TallyCount } from "#app/components/tally-count.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { type FormValues, parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { ClosingPart, closingLabels } from "./parts/closing-part.tsx";
@@ -104,6 +105,8 @@ const settled: Record<Step["step"], string[]> = {
 	remind: [],
 	extend: ["extended", "unchanged"],
 };
+
+export const shouldRevalidate = lookAgain;
 
 export default function SurveyPage({ loaderData, actionData }: Route.ComponentProps) {
 	const { survey, mailings, closing } = loaderData;

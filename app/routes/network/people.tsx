@@ -13,6 +13,7 @@ import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { type FormValues, parseForm, type Problem } from "#app/lib/parse-form.ts";
 
 export async function loader({ context }: Route.LoaderArgs) {
@@ -49,6 +50,8 @@ function problemOf(outcome: string): Problem | undefined {
 	if (outcome === "operation_unknown" || outcome === "operation_several") return { field: "operation", code: outcome };
 	return undefined;
 }
+
+export const shouldRevalidate = lookAgain;
 
 export default function People({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("network");

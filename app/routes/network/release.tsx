@@ -13,6 +13,7 @@ import { DraftReport } from "#app/components/release/draft-report.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { type Decided, decideRelease } from "#app/jobs/decide-release.server.ts";
+import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { Decision } from "#app/release/decision.schema.ts";
@@ -62,6 +63,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", { key: `release:toast.${done}`, values });
 	return redirect(href("/network/releases/:draftId", params), 303);
 }
+
+export const shouldRevalidate = lookAgain;
 
 export default function ReleaseReview({ loaderData, actionData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("release");
