@@ -1,13 +1,10 @@
-import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
 import { Form } from "react-router";
 import { Button } from "#app/components/button.tsx";
 import { Confirm } from "#app/components/confirm.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
-import type { FormValues, Problem } from "#app/lib/parse-form.ts";
-
-type Sent = { values?: FormValues; problems?: Problem[] };
+import { MinuteFields, type Sent, sentField, Way } from "./decision-parts.tsx";
 
 /** The fields of a decision under their names, for the error summary. */
 export function decisionLabels(t: (key: string) => string): Record<string, string> {
@@ -20,15 +17,9 @@ export function decisionLabels(t: (key: string) => string): Record<string, strin
 	};
 }
 
-function useFields({ values, problems }: Sent) {
+function useFields(sent: Sent) {
 	const { t } = useTranslation("release");
-	const labels = decisionLabels(t);
-	return (name: string, otherwise = "") => ({
-		name,
-		label: labels[name]!,
-		defaultValue: typeof values?.[name] === "string" ? values[name] : otherwise,
-		problem: problems?.find((problem) => problem.field === name),
-	});
+	return sentField(decisionLabels(t), sent);
 }
 
 /** What can be done with an audited draft: published at once, at a set minute, or sent back. */
@@ -50,10 +41,7 @@ export function DecisionForms({ tomorrow, ...sent }: Sent & { tomorrow: string }
 			</Way>
 			<Way title={t("review.schedule")}>
 				<p className="mb-4">{t("review.scheduleHelp")}</p>
-				<div className="flex flex-wrap items-end gap-x-8">
-					<TextField {...field("publishOn", tomorrow)} type="date" size="medium" />
-					<TextField {...field("publishAt", "08:00")} type="time" size="short" help={t("review.zone")} />
-				</div>
+				<MinuteFields field={field} tomorrow={tomorrow} />
 				<Button kind="secondary" name="decision" value="schedule">
 					{t("review.scheduleButton")}
 				</Button>
@@ -105,14 +93,5 @@ export function WithdrawForm(sent: Sent) {
 				/>
 			</Form>
 		</Section>
-	);
-}
-
-function Way({ title, children }: { title: string; children: ReactNode }) {
-	return (
-		<Form method="post" noValidate className="mt-6 max-w-xl border-t border-rule pt-4">
-			<h3 className="mb-2 text-lg font-bold">{title}</h3>
-			{children}
-		</Form>
 	);
 }

@@ -1,4 +1,3 @@
-import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
 import { Form } from "react-router";
 import { Button } from "#app/components/button.tsx";
@@ -6,10 +5,9 @@ import { Confirm } from "#app/components/confirm.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
-import type { FormValues, Problem } from "#app/lib/parse-form.ts";
 import type { ReportState } from "#app/publish/drafting/reports.server.ts";
+import { MinuteFields, type Sent, sentField, Way } from "./decision-parts.tsx";
 
-type Sent = { values?: FormValues; problems?: Problem[] };
 type ReportDecisionsProps = { state: ReportState; own: boolean; tomorrow: string; sent?: Sent };
 
 /** The fields of a decision under their names, for the error summary too. */
@@ -43,13 +41,7 @@ export function ReportDecisions({ state, own, tomorrow, sent }: ReportDecisionsP
 }
 
 function useField(sent: Sent | undefined) {
-	const labels = useDecisionLabels();
-	return (name: string, otherwise = "") => ({
-		name,
-		label: labels[name] ?? "",
-		defaultValue: typeof sent?.values?.[name] === "string" ? sent.values[name] : otherwise,
-		problem: sent?.problems?.find((problem) => problem.field === name),
-	});
+	return sentField(useDecisionLabels(), sent);
 }
 
 function Approval({ tomorrow, sent }: Pick<ReportDecisionsProps, "tomorrow" | "sent">) {
@@ -69,10 +61,7 @@ function Approval({ tomorrow, sent }: Pick<ReportDecisionsProps, "tomorrow" | "s
 			</Way>
 			<Way title={t("report:schedule.title")}>
 				<p className="mb-4">{t("report:schedule.help")}</p>
-				<div className="flex flex-wrap items-end gap-x-8">
-					<TextField {...field("publishOn", tomorrow)} type="date" size="medium" />
-					<TextField {...field("publishAt", "08:00")} type="time" size="short" help={t("release:review.zone")} />
-				</div>
+				<MinuteFields field={field} tomorrow={tomorrow} />
 				<Button kind="secondary" name="intent" value="schedule">
 					{t("report:schedule.button")}
 				</Button>
@@ -106,15 +95,6 @@ function Unschedule() {
 				name="intent"
 				value="unschedule"
 			/>
-		</Form>
-	);
-}
-
-function Way({ title, children }: { title: string; children: ReactNode }) {
-	return (
-		<Form method="post" noValidate className="mt-6 max-w-xl border-t border-rule pt-4">
-			<h3 className="mb-2 text-lg font-bold">{title}</h3>
-			{children}
 		</Form>
 	);
 }
