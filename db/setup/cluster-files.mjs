@@ -112,6 +112,8 @@ export function settingsText({ port, socket, throwaway }) {
 		timezone: quoted("UTC"),
 		log_timezone: quoted("UTC"),
 		max_connections: throwaway ? 200 : 100,
+		// As every connection of the product has it (db/connect.ts), for those that tests and set-up open by themselves.
+		jit: "off",
 		...(throwaway && { fsync: "off", synchronous_commit: "off", full_page_writes: "off" }),
 	};
 	return Object.entries(settings)

@@ -39,5 +39,8 @@ if (unknown.length > 0 || ![...bench.sizes, bench.runs].every((size) => Number.i
 	process.exit(1);
 }
 print({ name: "machine load at the beginning", value: loadavg()[0]!, unit: "1 min average" });
-for (const name of wanted) await parts[name]!(bench);
+for (const name of wanted) {
+	const measure = await parts[name]!();
+	await measure(bench);
+}
 print({ name: "machine load at the end", value: loadavg()[0]!, unit: "1 min average" });

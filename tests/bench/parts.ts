@@ -1,8 +1,12 @@
 import type { Part } from "./line.ts";
-import { pages } from "./pages.ts";
-import { protect } from "./protect.ts";
-import { submission } from "./submission.ts";
-import { tally } from "./tally.ts";
 
-/** What can be measured, by the name to ask for it with. A new part is a file beside this one and a line here. */
-export const parts: Record<string, Part> = { tally, submission, pages, protect };
+/**
+ * What can be measured, by the name to ask for it with. A new part is a file beside this one and a line here. One that is not
+ * asked for is not loaded: its libraries would count in the memory of the others.
+ */
+export const parts: Record<string, () => Promise<Part>> = {
+	tally: async () => (await import("./tally.ts")).tally,
+	submission: async () => (await import("./submission.ts")).submission,
+	pages: async () => (await import("./pages.ts")).pages,
+	protect: async () => (await import("./protect.ts")).protect,
+};
