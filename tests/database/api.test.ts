@@ -12,6 +12,7 @@ import type { Researcher } from "#app/auth/viewer.ts";
 import { i18nextMiddleware } from "#app/i18n/middleware.server.ts";
 import { makeReleaseFiles } from "#app/jobs/make-release-files.server.ts";
 import { chosenType } from "#app/publish/api/accept.ts";
+import { problemStatus } from "#app/publish/api/problem.ts";
 import { loader as areas } from "#app/routes/api/v1/areas.ts";
 import { loader as cells } from "#app/routes/api/v1/cells.ts";
 import { loader as crops } from "#app/routes/api/v1/crops.ts";
@@ -130,6 +131,22 @@ describe("the OpenAPI document", () => {
 		const validator = new Validator();
 		expect(await validator.validate(structuredClone(contract) as never)).toMatchObject({ valid: true });
 		expect(await validator.validate({ ...contract, info: undefined } as never)).toMatchObject({ valid: false });
+	});
+
+	test("tells every refusal that an address can answer with by its code, also where several have one status", () => {
+		type Told = { description: string; content: Record<string, { examples: Record<string, { value: Problem }> }> };
+		const { responses } = contract.paths["/releases/{release}/files/{file}"]!.get as unknown as {
+			responses: Record<string, Told>;
+		};
+		const codes = Object.entries(responses).flatMap(([status, { content }]) =>
+			Object.entries(content?.["application/problem+json"]?.examples ?? {}).map(([code, { value }]) => {
+				expect(value).toMatchObject({ status: Number(status), type: `https://survey.example/api#${code}` });
+				return code;
+			}),
+		);
+		// All but the one for an address that does not exist.
+		expect(new Set(codes)).toEqual(new Set(Object.keys(problemStatus).filter((code) => code !== "not_found")));
+		expect(responses[401]!.description).toBe("This key opens nothing / This key has expired");
 	});
 
 	test("names every address that there is, and each answers", async () => {

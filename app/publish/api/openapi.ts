@@ -1,8 +1,9 @@
 import type { TFunction } from "i18next";
 import { z } from "zod";
+import { groupBy } from "#app/lib/group-by.ts";
 import { ProblemDetails } from "./items.ts";
 import { type Operation, type OperationId, operationIds, operations } from "./operations.ts";
-import { problemStatus, type ProblemCode } from "./problem.ts";
+import { ApiProblem, problemBody, problemStatus, type ProblemCode } from "./problem.ts";
 import { isList } from "./read-request.ts";
 
 type Json = Record<string, unknown>;
@@ -16,7 +17,7 @@ export function openApiDocument(site: string, t: TFunction): Json {
 		externalDocs: { url: `${site}/api`, description: t("dataroom:api.reference") },
 		security: [{}, { key: [] }],
 		paths: Object.fromEntries(
-			operationIds.map((id) => [operations[id].path || "/", { get: operationOf(id, operations[id], t) }]),
+			operationIds.map((id) => [operations[id].path || "/", { get: operationOf(id, operations[id], site, t) }]),
 		),
 		components: {
 			securitySchemes: { key: { type: "http", scheme: "bearer", description: t("dataroom:api.keyAbout") } },
@@ -25,7 +26,7 @@ export function openApiDocument(site: string, t: TFunction): Json {
 	};
 }
 
-function operationOf(id: OperationId, operation: Operation, t: TFunction): Json {
+function operationOf(id: OperationId, operation: Operation, site: string, t: TFunction): Json {
 	return {
 		operationId: id,
 		summary: t(`dataroom:api.operation.${id}.name`),
@@ -38,7 +39,7 @@ function operationOf(id: OperationId, operation: Operation, t: TFunction): Json 
 				206: { description: t("dataroom:api.answer.206"), content: contentOf(operation) },
 				416: { description: t("dataroom:api.answer.416") },
 			}),
-			...Object.fromEntries(refusalsOf(operation, t)),
+			...Object.fromEntries(refusalsOf(operation, site, t)),
 		},
 	};
 }
@@ -89,21 +90,33 @@ function headersOf(t: TFunction): Json {
 const anywhere: ProblemCode[] = [
 	"bad_parameter",
 	"key_not_valid",
+	"key_expired",
 	"key_out_of_scope",
 	"method_not_allowed",
 	"not_acceptable",
 	"too_many_requests",
 ];
 
-function refusalsOf({ path, body }: Operation, t: TFunction): [number, Json][] {
+/** Refusals by status. Several codes can have one status: each is told by its title and by an example of what is answered. */
+function refusalsOf({ path, body }: Operation, site: string, t: TFunction): [number, Json][] {
 	const codes: ProblemCode[] = [...anywhere];
 	if (path.includes("{release}")) codes.push("release_not_found", "release_withdrawn");
-	if (body === null) codes.push("files_not_ready");
-	return codes.map((code) => [
-		problemStatus[code],
+	if (body === null) codes.push("files_not_ready", "file_not_found");
+	return [...groupBy(codes, (code) => problemStatus[code])].map(([status, alike]) => [
+		status,
 		{
-			description: t(`dataroom:api.problem.${code}.title`),
-			content: { "application/problem+json": { schema: { $ref: "#/components/schemas/ProblemDetails" } } },
+			description: alike.map((code) => t(`dataroom:api.problem.${code}.title`)).join(" / "),
+			content: {
+				"application/problem+json": {
+					schema: { $ref: "#/components/schemas/ProblemDetails" },
+					examples: Object.fromEntries(
+						alike.map((code) => [
+							code,
+							{ value: problemBody(new ApiProblem(code), `/api/v1${path}`, `${site}/api`, t) },
+						]),
+					),
+				},
+			},
 		},
 	]);
 }
