@@ -50,6 +50,15 @@ export interface AuthApiKey {
   scopes: string[];
 }
 
+export interface AuthChangeMailing {
+  change: string;
+  failed_as: string | null;
+  release_follow_id: string;
+  release_id: string;
+  sent_at: Timestamp | null;
+  tried_at: Timestamp | null;
+}
+
 export interface AuthPerson {
   created_at: Generated<Timestamp>;
   display_name: string;
@@ -59,6 +68,13 @@ export interface AuthPerson {
   language: string | null;
   person_id: Generated<string>;
   subject: string;
+}
+
+export interface AuthReleaseFollow {
+  followed_at: Generated<Timestamp>;
+  person_id: string;
+  release_follow_id: Generated<string>;
+  series_id: string;
 }
 
 export interface AuthRoleGrant {
@@ -594,6 +610,15 @@ export interface LogEvent {
   subject_kind: string;
 }
 
+export interface PublishExpected {
+  again: boolean | null;
+  expected_at: Timestamp | null;
+  kind: string | null;
+  season: number | null;
+  state_fips: string[] | null;
+  title: Json | null;
+}
+
 export interface PublishReport {
   approved_by: string | null;
   author_name: string;
@@ -726,6 +751,12 @@ export interface ReleaseFile {
   sha256: string;
 }
 
+export interface ReleaseForm {
+  definition: Json;
+  release_id: string;
+  version: number;
+}
+
 export interface ReleaseMeasure {
   decimals: number;
   description: Json;
@@ -766,7 +797,9 @@ export interface ReleaseWithdrawal {
 export interface DB {
   "auth.access_request": AuthAccessRequest;
   "auth.api_key": AuthApiKey;
+  "auth.change_mailing": AuthChangeMailing;
   "auth.person": AuthPerson;
+  "auth.release_follow": AuthReleaseFollow;
   "auth.role_grant": AuthRoleGrant;
   "auth.session": AuthSession;
   "auth.tries": AuthTries;
@@ -815,6 +848,7 @@ export interface DB {
   "directory.state": DirectoryState;
   "log.download": LogDownload;
   "log.event": LogEvent;
+  "publish.expected": PublishExpected;
   "publish.report": PublishReport;
   "publish.report_comment": PublishReportComment;
   "publish.report_edit": PublishReportEdit;
@@ -827,6 +861,7 @@ export interface DB {
   "release.cell": ReleaseCell;
   "release.figure": ReleaseFigure;
   "release.file": ReleaseFile;
+  "release.form": ReleaseForm;
   "release.measure": ReleaseMeasure;
   "release.release": ReleaseRelease;
   "release.withdrawal": ReleaseWithdrawal;

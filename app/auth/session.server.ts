@@ -8,8 +8,8 @@ type SessionData = { personId?: string; personalLinkId?: string };
 type FlashData = { toast?: ToastMessage };
 export type VisitorSession = Session<SessionData, FlashData>;
 
-const idleHours = 12;
-const absoluteDays = 14;
+export const sessionIdleHours = 12;
+export const sessionDays = 14;
 
 let storage: ReturnType<typeof createStorage> | undefined;
 
@@ -23,7 +23,7 @@ function createStorage() {
 			secure,
 			path: "/",
 			secrets: [env().SESSION_SECRET],
-			maxAge: absoluteDays * 86_400,
+			maxAge: sessionDays * 86_400,
 		},
 		// The cookie holds a random id; the table holds its hash, so that a stolen table opens no session.
 		async createData(data) {
@@ -38,7 +38,7 @@ function createStorage() {
 					.set({ seen_at: new Date() })
 					.where("session_hash", "=", hash(id))
 					.where("expires_at", ">", new Date())
-					.where("seen_at", ">", new Date(Date.now() - idleHours * 3_600_000))
+					.where("seen_at", ">", new Date(Date.now() - sessionIdleHours * 3_600_000))
 					.returning("data")
 					.executeTakeFirst();
 				return (row?.data as SessionData | undefined) ?? null;
@@ -68,7 +68,7 @@ async function write(id: string, data: SessionData & FlashData): Promise<void> {
 	await scopedTransaction({ kind: "none" }, (trx) =>
 		trx
 			.insertInto("auth.session")
-			.values({ session_hash: hash(id), ...columns, expires_at: new Date(Date.now() + absoluteDays * 86_400_000) })
+			.values({ session_hash: hash(id), ...columns, expires_at: new Date(Date.now() + sessionDays * 86_400_000) })
 			.onConflict((conflict) => conflict.column("session_hash").doUpdateSet(columns))
 			.execute(),
 	);

@@ -1,11 +1,11 @@
 import { isDeepStrictEqual } from "node:util";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Grower } from "#app/auth/viewer.ts";
+import { pledgeVersion } from "#app/lib/pledge.ts";
 import type { AnswerPlace } from "./answer-place.server.ts";
 import { findNewestSubmission, replaceAnswers } from "./answer-rows.server.ts";
 import { endEntryDraft, findEntryDraft, listOtherEntryDrafts } from "./entry-drafts.server.ts";
 import type { Answer } from "./form.ts";
-import { pledgeVersion } from "./pledge.ts";
 import { findHindrance } from "./progress.ts";
 import { findAnswering, type LockedAnswering, lockAnswering, startResponse } from "./responses.server.ts";
 import { afterWriting, changeOf, type StepChanges } from "./step-change.ts";

@@ -2,6 +2,15 @@ import { useTranslation } from "react-i18next";
 import { Link } from "react-router";
 import { helpContact } from "#app/lib/help-contact.ts";
 
+const links = [
+	{ to: "/about", key: "footer.about" },
+	{ to: "/calendar", key: "footer.calendar" },
+	{ to: "/methods", key: "footer.methods" },
+	{ to: "/privacy", key: "footer.privacy" },
+	{ to: "/accessibility", key: "footer.accessibility" },
+	{ to: "/api", key: "footer.api" },
+] as const;
+
 /** The same on every page: what is promised, how figures are made, whom to ask. */
 export function SiteFooter() {
 	const { t } = useTranslation();
@@ -10,18 +19,11 @@ export function SiteFooter() {
 			<p className="max-w-prose text-quiet">{t("footer.published")}</p>
 			<nav aria-label={t("nav.footer")} className="mt-2">
 				<ul className="flex flex-wrap gap-x-6">
-					<li>
-						<FooterLink to="/methods">{t("footer.methods")}</FooterLink>
-					</li>
-					<li>
-						<FooterLink to="/api">{t("footer.api")}</FooterLink>
-					</li>
-					<li>
-						<FooterLink to="/methods#privacy">{t("footer.privacy")}</FooterLink>
-					</li>
-					<li>
-						<FooterLink to="/methods#accessibility">{t("footer.accessibility")}</FooterLink>
-					</li>
+					{links.map(({ to, key }) => (
+						<li key={to}>
+							<FooterLink to={to}>{t(key)}</FooterLink>
+						</li>
+					))}
 				</ul>
 			</nav>
 			<HelpLine />

@@ -13,6 +13,7 @@ import enOrchard from "#locales/en/orchard.json" with { type: "json" };
 import enPublic from "#locales/en/public.json" with { type: "json" };
 import enRelease from "#locales/en/release.json" with { type: "json" };
 import enReport from "#locales/en/report.json" with { type: "json" };
+import enSite from "#locales/en/site.json" with { type: "json" };
 import esAnswered from "#locales/es/answered.json" with { type: "json" };
 import esChecks from "#locales/es/checks.json" with { type: "json" };
 import esCommon from "#locales/es/common.json" with { type: "json" };
@@ -28,6 +29,7 @@ import esOrchard from "#locales/es/orchard.json" with { type: "json" };
 import esPublic from "#locales/es/public.json" with { type: "json" };
 import esRelease from "#locales/es/release.json" with { type: "json" };
 import esReport from "#locales/es/report.json" with { type: "json" };
+import esSite from "#locales/es/site.json" with { type: "json" };
 
 /** All words of the product, for the server. A browser loads one language only (`load-language.client.ts`). */
 export const resources = {
@@ -47,6 +49,7 @@ export const resources = {
 		public: enPublic,
 		release: enRelease,
 		report: enReport,
+		site: enSite,
 	},
 	es: {
 		answered: esAnswered,
@@ -64,5 +67,6 @@ export const resources = {
 		public: esPublic,
 		release: esRelease,
 		report: esReport,
+		site: esSite,
 	},
 };

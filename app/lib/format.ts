@@ -79,6 +79,9 @@ export function formatterFor(language: string, t: TFunction) {
 		/** The calendar day of a moment in the named zone. */
 		dayOf: (value: Date | string, timeZone = "America/Chicago") =>
 			date(value, { day: "numeric", month: "long", year: "numeric", timeZone }),
+		/** The time of day of a moment in the named zone. */
+		timeOf: (value: Date | string, timeZone = "America/Chicago") =>
+			date(value, { hour: "numeric", minute: "2-digit", timeZone, timeZoneName: "short" }),
 		/** A file's size in the unit that reads best; kilo is a thousand, as the byte count itself may stand beside it. */
 		fileSize: (bytes: number) => {
 			const unit = bytes < 1e6 ? "kilobyte" : "megabyte";

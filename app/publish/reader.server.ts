@@ -4,8 +4,9 @@ import type { DB } from "#db/schema.ts";
 import { env } from "#app/lib/env.server.ts";
 import { serviceAway } from "#app/lib/service-away.server.ts";
 
-type ReaderTable = `release.${string}` | "publish.report" | "publish.report_file" | "publish.report_photo";
-/** What the reader's role can see: released cells and published reports. Other tables do not even compile. */
+type ReportTable = "publish.report" | "publish.report_file" | "publish.report_photo";
+type ReaderTable = `release.${string}` | ReportTable | "publish.expected";
+/** What the reader's role can see: released cells, published reports, and what is expected when. Other tables do not even compile. */
 export type ReaderDB = Pick<DB, Extract<keyof DB, ReaderTable>>;
 
 let readerDatabase: Kysely<ReaderDB> | undefined;

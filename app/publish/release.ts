@@ -48,6 +48,10 @@ export type Release = {
 	withdrawn: { at: string; reason: Words } | null;
 };
 
+/** Whether its figures are those that hold: neither replaced by a revision nor withdrawn. */
+export const isStanding = ({ replacedBy, withdrawn }: Pick<Release, "replacedBy" | "withdrawn">): boolean =>
+	replacedBy === null && withdrawn === null;
+
 export type ReleaseMeasure = FigureShape & {
 	key: string;
 	label: Words;

@@ -36,6 +36,7 @@ beforeAll(async () => {
 		values ($1, 'cells.csv', 0, 'text/csv', 'a', 1, encode(sha256('a'), 'hex'))`,
 		[releaseId],
 	);
+	await owner.query("insert into release.form (release_id, version, definition) values ($1, 1, '{}')", [releaseId]);
 	await owner.query("insert into log.download (person_id, release_id, file_key) values ($1, $2, 'cells.csv')", [
 		personId,
 		releaseId,

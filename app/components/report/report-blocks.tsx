@@ -1,4 +1,5 @@
 import { useTranslation } from "react-i18next";
+import { Caution } from "#app/components/caution.tsx";
 import { type Column, DataTable } from "#app/components/data-table.tsx";
 import { Chart } from "#app/components/chart/chart.tsx";
 import { Figure } from "#app/components/figure.tsx";
@@ -6,7 +7,6 @@ import { useAreaName } from "#app/components/map/area-name.ts";
 import { bandText } from "#app/components/map/cell-words.ts";
 import { Legend } from "#app/components/map/legend.tsx";
 import { type DrawnPicture, StaticMap } from "#app/components/map/static-map.tsx";
-import { Notice } from "#app/components/notice.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { CropTable } from "./crop-table.tsx";
 import type { ToldBlock, ToldCell, ToldMeasure } from "./report-data.ts";
@@ -40,11 +40,7 @@ export function ReportBlocks({ blocks, season, picture }: ReportBlocksProps) {
 			case "chart":
 				return <Chart key={block.id} drawn={block.drawn} season={season} />;
 			case "caution":
-				return (
-					<Notice key={block.id} tone="caution" title={t(`caution.${block.key}.title`)}>
-						{t(`caution.${block.key}.body`)}
-					</Notice>
-				);
+				return <Caution key={block.id} caution={block.key} />;
 			case "missing":
 				return (
 					<p key={block.id} className="my-4 text-quiet">

@@ -4,7 +4,6 @@ import type { Route } from "./+types/settings";
 import { requireOrchard } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { listOwnConsents } from "#app/collect/own-consents.server.ts";
-import { pledgeVersion } from "#app/collect/pledge.ts";
 import { markReachable } from "#app/collect/reach.server.ts";
 import { unitsFor } from "#app/collect/units.ts";
 import { Button } from "#app/components/button.tsx";
@@ -13,15 +12,16 @@ import { ChoiceField } from "#app/components/choice-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
+import { Pledge } from "#app/components/pledge.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { findOwnSettings, saveOwnSettings } from "#app/directory/own-settings.server.ts";
 import { languages, wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
+import { pledgeVersion } from "#app/lib/pledge.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { BackToOrchard } from "./parts/back-to-orchard.tsx";
-import { Pledge } from "./parts/pledge.tsx";
 import { SettingsForm } from "./parts/settings-form.ts";
 
 export async function loader({ context, params }: Route.LoaderArgs) {

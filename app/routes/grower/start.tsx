@@ -2,23 +2,23 @@ import { useTranslation } from "react-i18next";
 import { Form, href, redirect } from "react-router";
 import type { Route } from "./+types/start";
 import { requireGrower } from "#app/auth/guard.server.ts";
-import { pledgeVersion } from "#app/collect/pledge.ts";
 import { findOpenStep } from "#app/collect/progress.ts";
 import { startResponse } from "#app/collect/responses.server.ts";
 import { listSteps } from "#app/collect/steps.ts";
 import { Button, ButtonLink } from "#app/components/button.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
+import { Pledge } from "#app/components/pledge.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { pledgeVersion } from "#app/lib/pledge.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { getAnswering } from "./parts/answering.server.ts";
 import { LateNotice } from "./parts/late-notice.tsx";
 import { PhonePart } from "./parts/phone-part.tsx";
 import { phonePart } from "./parts/phone.server.ts";
-import { Pledge } from "./parts/pledge.tsx";
 
 export const handle = { bare: true };
 

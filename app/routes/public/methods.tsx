@@ -64,6 +64,9 @@ export default function Methods({ loaderData }: Route.ComponentProps) {
 				<Text lines={[t("methods.private.pledge"), settings.minimum, settings.dominance]} />
 				<Text lines={[t("methods.private.shields"), t("methods.private.oneWord"), t("methods.private.kept")]} />
 				<Text lines={[t("methods.private.contact", helpContact)]} />
+				<p>
+					<Link to={href("/privacy")}>{t("site:about.more.privacy")}</Link>
+				</p>
 			</Section>
 			<Section title={t("methods.detail.title")} id="detail">
 				<Text lines={[t("methods.detail.design"), t("methods.detail.estimator"), t("methods.detail.variance")]} />
@@ -75,9 +78,6 @@ export default function Methods({ loaderData }: Route.ComponentProps) {
 						</Link>
 					</p>
 				)}
-			</Section>
-			<Section title={t("methods.accessibility.title")} id="accessibility">
-				<Text lines={[t("methods.accessibility.body"), t("methods.accessibility.contact", helpContact)]} />
 			</Section>
 		</Page>
 	);

@@ -1,7 +1,7 @@
 import { useTranslation } from "react-i18next";
 import { CheckField } from "#app/components/check-field.tsx";
+import { Pledge } from "#app/components/pledge.tsx";
 import type { Problem } from "#app/lib/parse-form.ts";
-import { Pledge } from "../../../grower/parts/pledge.tsx";
 
 /** What is read out before the first question, and stands on every paper form. */
 export function EntryPledge({ isTicked, problems }: { isTicked: boolean; problems: Problem[] }) {

@@ -24,14 +24,17 @@ export type Latest = {
 	picture: DrawnPicture | null;
 };
 
+type FindingPageProps = { latest: Latest; notice: ReactNode; children: ReactNode };
+
 /** What the season brought as one sentence, then how sure it is, the map, and the crops side by side. */
-export function FindingPage({ latest, children }: { latest: Latest; children: ReactNode }) {
+export function FindingPage({ latest, notice, children }: FindingPageProps) {
 	const { t, i18n } = useTranslation("public");
 	const { release, measure, rows } = latest;
 	const label = wordsIn(measure.label, i18n.language);
 	const shown = { measure: label, season: release.season };
 	return (
 		<Page title={useSentence(latest)} lead={wordsIn(measure.description, i18n.language)}>
+			{notice}
 			<div className="grid grid-cols-[minmax(0,1fr)] gap-x-10 gap-y-8 lg:grid-cols-[minmax(0,1fr)_minmax(0,26rem)] lg:grid-rows-[auto_1fr]">
 				<Headline latest={latest} />
 				<HomeMap latest={latest} />
