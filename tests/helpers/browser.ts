@@ -8,6 +8,8 @@ const flags = [
 	"--disable-background-networking",
 	"--disable-component-update",
 	"--disable-sync",
+	// Pages of a test live for seconds: compiling their scripts for speed costs a fifth more than it saves.
+	"--js-flags=--no-turbofan --no-maglev --single-threaded-gc",
 	// WebGL in software, without a warning for each map; all else is drawn without it, which is much cheaper.
 	"--use-angle=swiftshader",
 	"--disable-gpu-compositing",
