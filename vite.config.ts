@@ -7,6 +7,8 @@ export default defineConfig({
 	// The scripts of growers' pages stand by themselves, like workers: each one file, with an address of its own.
 	worker: { format: "es" },
 	test: {
+		// Pictures are drawn in the style sheets' own colours.
+		css: { include: [/\.css\?raw$/] },
 		projects: [
 			{
 				extends: true,

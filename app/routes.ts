@@ -38,6 +38,7 @@ export default [
 	route("reports.atom", "routes/public/report-feed.ts"),
 	route("reports/:slug/:file", "routes/public/report-file.ts"),
 	route("map/counties.json", "routes/public/map-counties.ts"),
+	route("map/:file", "routes/public/map-file.ts"),
 	route("data/:release/:citation", "routes/public/cite.ts"),
 	route("map/figures/:release/:measure/:crop", "routes/public/map-figures.ts"),
 	route("dataroom/releases/:release/:file", "routes/dataroom/file.ts"),

@@ -14,10 +14,20 @@ export function entityTag(body: string): string {
 
 /** JSON with a strong ETag: 304 without a body when the asker's copy is still the same. */
 export function cachedJson(request: Request, body: string, keep: keyof typeof caching): Response {
-	const etag = entityTag(body);
-	const headers = { etag, "cache-control": caching[keep] };
-	if (matches(request.headers.get("if-none-match"), etag)) return new Response(null, { status: 304, headers });
-	return new Response(body, { headers: { ...headers, "content-type": "application/json; charset=utf-8" } });
+	const headers = { "content-type": "application/json; charset=utf-8", "cache-control": caching[keep] };
+	return unlessKept(request, entityTag(body), headers) ?? new Response(body, { headers: tagged(body, headers) });
+}
+
+const tagged = (body: string, headers: Record<string, string>) => ({ ...headers, etag: entityTag(body) });
+
+/** What a figures' file is kept like: as long as the figures themselves. */
+export const keptLikeFigures = { "cache-control": caching.figures };
+
+/** The answer to who has this version already; null where the whole must be sent. */
+export function unlessKept(request: Request, etag: string, headers: Record<string, string>): Response | null {
+	if (!matches(request.headers.get("if-none-match"), etag)) return null;
+	const { "content-type": _, ...kept } = headers;
+	return new Response(null, { status: 304, headers: { ...kept, etag } });
 }
 
 /** A refusal of a resource route, after RFC 9457. Holds the status and its meaning only. */

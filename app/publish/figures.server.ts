@@ -1,7 +1,8 @@
 import { type AreaKind, type Cell, lookOf, type MapCell } from "./cell.ts";
 import { listCells } from "./cells.server.ts";
+import { type ClassWay, haveMiddle } from "./class-steps.ts";
 import { classesOfCells, classOf, type MapClass } from "./classes.ts";
-import type { Release, ReleaseMeasure } from "./release.ts";
+import type { Hue, Release, ReleaseMeasure } from "./release.ts";
 import { findRelease, listAreas, listMeasures } from "./releases.server.ts";
 
 export type MapFigures = {
@@ -12,6 +13,9 @@ export type MapFigures = {
 	cells: MapCell[];
 	/** From the shown values alone. */
 	classes: MapClass[];
+	way: ClassWay;
+	/** The measure's own, or two hues that part in the middle where fixed classes lie on both sides of one. */
+	hue: Hue | "normal";
 	/** Which cell each county is drawn from: itself, or its district. Null: the county is in no district. */
 	areaOfCounty: Record<string, string | null>;
 };
@@ -25,13 +29,13 @@ export async function findMapFigures(
 	measureKey: string,
 	cropKey: string,
 	kind: AreaKind,
-	beside?: number,
+	{ beside, way }: { beside?: number; way?: ClassWay } = {},
 ): Promise<MapFigures | undefined> {
 	const [release, other] = await Promise.all([findRelease(number), beside ? findRelease(beside) : undefined]);
 	const measure = release && (await findMeasure(release, measureKey));
 	if (!release || !measure) return undefined;
-	if (beside === undefined) return mapFiguresOf(release, measure, cropKey, kind);
-	return other && (await pairFiguresOf(release, measure, other, cropKey, kind))?.[0];
+	if (beside === undefined) return mapFiguresOf(release, measure, cropKey, kind, way);
+	return other && (await pairFiguresOf(release, measure, other, cropKey, kind, way))?.[0];
 }
 
 export async function mapFiguresOf(
@@ -39,9 +43,10 @@ export async function mapFiguresOf(
 	measure: ReleaseMeasure,
 	cropKey: string,
 	kind: AreaKind,
+	way: ClassWay = "natural",
 ): Promise<MapFigures | undefined> {
 	const read = await readFigures(release, measure, cropKey, kind);
-	return read && drawnWith(read, classesOfCells(read.cells, measure.decimals));
+	return read && drawnWith(read, classesOfCells(read.cells, measure, way), way);
 }
 
 /**
@@ -54,6 +59,7 @@ export async function pairFiguresOf(
 	other: Release,
 	cropKey: string,
 	kind: AreaKind,
+	way: ClassWay = "natural",
 ): Promise<[MapFigures, MapFigures] | undefined> {
 	if (release.withdrawn || other.withdrawn || release.number === other.number) return undefined;
 	const otherMeasure = await findMeasure(other, measure.key);
@@ -63,15 +69,15 @@ export async function pairFiguresOf(
 		readFigures(other, otherMeasure, cropKey, kind),
 	]);
 	if (!read || !otherRead) return undefined;
-	const classes = classesOfCells([...read.cells, ...otherRead.cells], measure.decimals);
-	return [drawnWith(read, classes), drawnWith(otherRead, classes)];
+	const classes = classesOfCells([...read.cells, ...otherRead.cells], measure, way);
+	return [drawnWith(read, classes, way), drawnWith(otherRead, classes, way)];
 }
 
 async function findMeasure(release: Release, measureKey: string): Promise<ReleaseMeasure | undefined> {
 	return (await listMeasures(release.releaseId)).find(({ key }) => key === measureKey);
 }
 
-type Read = Omit<MapFigures, "cells" | "classes"> & { cells: Cell[] };
+type Read = Omit<MapFigures, "cells" | "classes" | "way" | "hue"> & { cells: Cell[] };
 
 async function readFigures(
 	release: Release,
@@ -94,13 +100,14 @@ async function readFigures(
 }
 
 /** In classes that may be those of more figures than these; each class counts only its own areas here. */
-function drawnWith(read: Read, classes: MapClass[]): MapFigures {
+function drawnWith(read: Read, classes: MapClass[], way: ClassWay): MapFigures {
 	const cells = read.cells.map((cell) => drawn(cell, classes, read.measure.decimals));
 	const counted = classes.map((range, index) => ({
 		...range,
 		count: cells.filter(({ classIndex }) => classIndex === index).length,
 	}));
-	return { ...read, cells, classes: counted };
+	const hue = way === "fixed" && haveMiddle(read.measure.unit) ? "normal" : read.measure.hue;
+	return { ...read, cells, classes: counted, way, hue };
 }
 
 function drawn(cell: Cell, classes: MapClass[], decimals: number): MapCell {

@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { classWays } from "./class-steps.ts";
 
 const releaseNumber = z.coerce.number().int().positive().max(2_147_483_647).optional().catch(undefined);
 const text = z.string().trim().max(100).optional().catch(undefined);
@@ -11,6 +12,14 @@ export const MapQuery = z.object({
 	measure: text,
 	crop: text,
 	kind: z.enum(["county", "district"]).catch("county"),
+	/** Natural breaks or fixed steps. */
+	classes: z.enum(classWays).catch("natural"),
+	/** The state that the map is zoomed to, by FIPS code. */
+	state: z
+		.string()
+		.regex(/^\d{2}$/)
+		.optional()
+		.catch(undefined),
 	area: text,
 	q: z.string().trim().max(200).catch(""),
 	sort: z.enum(["area", "value", "earlier", "change"]).catch("area"),
@@ -26,4 +35,9 @@ export function readMapQuery(url: string): MapQuery {
 export function choose(wanted: string | undefined, offered: string[]): { key: string | undefined; changed: boolean } {
 	if (wanted !== undefined && offered.includes(wanted)) return { key: wanted, changed: false };
 	return { key: offered[0], changed: wanted !== undefined };
+}
+
+/** The areas that a view lists and counts: those of the state that it is zoomed to, or all. */
+export function inState<A extends { stateFips: string | null }>(areas: A[], state: string | null): A[] {
+	return state === null ? areas : areas.filter((area) => area.stateFips === state);
 }

@@ -15,41 +15,64 @@ export type Picture = {
 
 const width = 720;
 const margin = 6;
+const focusHeight = 600;
 const made = new Map<string, Picture>();
 
-/** The outlines of the given states in an equal-area projection, so that no county looks larger than it is. */
-export function pictureOf(states: string[]): Picture | null {
+/**
+ * The outlines of the given states in an equal-area projection, so that no county looks larger than it is.
+ * @param focus the state that the sheet is filled with, what lies around it running on to the sheet's edge.
+ */
+export function pictureOf(states: string[], focus: string | null = null): Picture | null {
 	if (states.length === 0) return null;
-	const key = states.toSorted().join("-");
-	const kept = made.get(key) ?? draw(states.toSorted());
-	if (made.size < 20) made.set(key, kept);
+	const key = `${states.toSorted().join("-")} ${focus}`;
+	const kept = made.get(key) ?? draw(states.toSorted(), focus);
+	if (made.size < 60) made.set(key, kept);
 	return kept;
 }
 
-function draw(states: string[]): Picture {
+function draw(states: string[], focus: string | null): Picture {
 	const topology = usTopology();
 	const features = countyFeatures(topology, states, 4);
 	const counties: FeatureCollection = { type: "FeatureCollection", features: features.features.map(planar) };
-	const [[west, south], [east, north]] = boundsOf(counties);
-	const projection = geoConicEqualArea()
-		.parallels([south + (north - south) / 6, north - (north - south) / 6])
-		.rotate([-(west + east) / 2, 0])
-		.fitWidth(width - 2 * margin, counties);
-	const [x, y] = projection.translate();
-	projection.translate([x + margin, y + margin]);
+	const { projection, height } = projected(counties, focus);
 	// Whole units are a quarter of a line's width on a screen, and half the bytes.
 	const path = geoPath(projection).digits(0);
-	const height = Math.ceil(path.bounds(counties)[1][1]) + margin;
+	const outlines = counties.features.map((county) => ({ fips: String(county.id), outline: path(county) ?? "" }));
 	return {
 		width,
 		height,
-		counties: counties.features.map((county) => ({ fips: String(county.id), outline: path(county) ?? "" })),
+		counties: outlines.filter(({ outline }) => outline !== ""),
 		stateLines: path(stateLines(topology, states, 4)) ?? "",
-		stateNames: states.map((stateFips) => {
-			const [nameX, nameY] = projection(middleOf(features, stateFips)) ?? [0, 0];
-			return { stateFips, x: Math.round(nameX), y: Math.round(nameY) };
+		stateNames: states.flatMap((stateFips) => {
+			const [x, y] = (projection(middleOf(features, stateFips)) ?? [0, 0]).map(Math.round) as [number, number];
+			return x < 0 || x > width || y < 0 || y > height ? [] : [{ stateFips, x, y }];
 		}),
 	};
+}
+
+/** A sheet that all counties fill, or one of a wide page's shape that those of one state fill. */
+function projected(counties: FeatureCollection, focus: string | null) {
+	const features = counties.features.filter(({ id }) => focus === null || String(id).startsWith(focus));
+	const filling: FeatureCollection = { type: "FeatureCollection", features };
+	const [[west, south], [east, north]] = boundsOf(filling);
+	const projection = geoConicEqualArea()
+		.parallels([south + (north - south) / 6, north - (north - south) / 6])
+		.rotate([-(west + east) / 2, 0]);
+	if (focus !== null) {
+		const frame = [
+			[-margin, -margin],
+			[width + margin, focusHeight + margin],
+		] as [[number, number], [number, number]];
+		const inner = [
+			[4 * margin, 4 * margin],
+			[width - 4 * margin, focusHeight - 4 * margin],
+		] as typeof frame;
+		return { projection: projection.fitExtent(inner, filling).clipExtent(frame), height: focusHeight };
+	}
+	projection.fitWidth(width - 2 * margin, filling);
+	const [x, y] = projection.translate();
+	projection.translate([x + margin, y + margin]);
+	return { projection, height: Math.ceil(geoPath(projection).bounds(filling)[1][1]) + margin };
 }
 
 /** West, south, east and north of the outlines, by way of a projection in which degrees of longitude stay straight. */

@@ -1,16 +1,16 @@
-import { type KeyboardEvent, useEffect, useId, useRef, useState } from "react";
+import { type KeyboardEvent, useEffect, useId, useMemo, useRef, useState } from "react";
 import { useTranslation } from "react-i18next";
 import { Button } from "#app/components/button.tsx";
 import { classes } from "#app/components/classes.ts";
 import type { FigureShape } from "#app/lib/format.ts";
 import { useCellWords } from "./cell-words.ts";
-import type { Direction } from "./live-map.client.ts";
+import type { Direction, LiveMap } from "./live-map.client.ts";
 import { mapKey, ZoomButtons } from "./map-keys.tsx";
 import { StaticMap, type StaticMapProps } from "./static-map.tsx";
 import { useLiveMap } from "./use-live-map.ts";
 import type { ViewLink } from "./view-link.ts";
 
-type CountyMapProps = Omit<StaticMapProps, "selected"> & {
+type CountyMapProps = Omit<StaticMapProps, "selected" | "sentences"> & {
 	countiesAddress: string;
 	figuresAddress: string;
 	measure: FigureShape;
@@ -22,14 +22,16 @@ type CountyMapProps = Omit<StaticMapProps, "selected"> & {
 	onChoose: (areaKey: string | null) => void;
 	/** The area under the pointer, for another map that marks it too. */
 	onPoint?: (areaKey: string | null) => void;
+	/** The state that the map is zoomed to. */
+	focus?: string | null;
 	/** What holds this map and another on the same view. */
 	link?: ViewLink;
 };
 
 /** The map of a page: drawn by the server at first, live once it can be; by pointer, finger and keyboard. */
 export function CountyMap(props: CountyMapProps) {
-	const { countiesAddress, figuresAddress, measure, chosen, pointed, nameOf, onChoose, onPoint, link, ...drawn } =
-		props;
+	const { countiesAddress, figuresAddress, measure, chosen, pointed, nameOf, onChoose, onPoint, link, ...rest } = props;
+	const { focus = null, ...drawn } = rest;
 	const { t } = useTranslation("public");
 	const words = useCellWords(measure);
 	const hintId = useId();
@@ -51,6 +53,7 @@ export function CountyMap(props: CountyMapProps) {
 		},
 	);
 	useEffect(() => (live && link ? link.join(live) : undefined), [live, link]);
+	useFraming(live, focus);
 	const marked = hover?.areaKey ?? pointed ?? chosen;
 	useEffect(() => {
 		if (state === "ready") live?.mark(marked);
@@ -61,6 +64,13 @@ export function CountyMap(props: CountyMapProps) {
 			nameOf(areaKey),
 			drawn.cells.find((cell) => cell.areaKey === areaKey),
 		);
+	const { cells } = drawn;
+	const sentences = useMemo(
+		() => Object.fromEntries(cells.map((cell) => [cell.areaKey, sentence(cell.areaKey)])),
+		// The words change with the figures and with nothing else on this page.
+		// oxlint-disable-next-line react-hooks/exhaustive-deps
+		[cells],
+	);
 	const onKeyDown = (event: KeyboardEvent) => {
 		const step = mapKey(event.key);
 		if (!step || !live || event.ctrlKey || event.metaKey || event.altKey) return;
@@ -86,7 +96,7 @@ export function CountyMap(props: CountyMapProps) {
 					className={classes("map-static h-full", ready && "invisible print:visible")}
 					aria-hidden={ready || undefined}
 				>
-					<StaticMap {...drawn} selected={ready ? chosen : marked} framed />
+					<StaticMap {...drawn} sentences={sentences} selected={ready ? chosen : marked} framed />
 				</div>
 				{/* A map walked by arrow keys is what the role "application" is for; every figure is in the table too. */}
 				{/* oxlint-disable-next-line jsx-a11y/no-noninteractive-element-interactions */}
@@ -119,6 +129,16 @@ export function CountyMap(props: CountyMapProps) {
 			<Trouble state={state} onRetry={retry} />
 		</div>
 	);
+}
+
+/** Zooms to a state as soon as the map is there, and back to all of them; a map that was never zoomed stays where it is. */
+function useFraming(live: LiveMap | null, focus: string | null) {
+	const framed = useRef<string | null>(null);
+	useEffect(() => {
+		if (!live || (focus === null && framed.current === null)) return;
+		live.frame(focus);
+		framed.current = focus;
+	}, [live, focus]);
 }
 
 /** Steps until another area is reached: a district is several counties wide. */

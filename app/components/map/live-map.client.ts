@@ -1,6 +1,6 @@
 import type { ExpressionSpecification, GeoJSONSource, Map as LibraryMap, MapMouseEvent } from "maplibre-gl";
 import { colorsOfPage, dotImage, hatchImage, type MapColors } from "./map-colors.client.ts";
-import type { FiguresAnswer, GeometryAnswer, Hue } from "./map-data.ts";
+import type { FiguresAnswer, GeometryAnswer, DrawnHue } from "./map-data.ts";
 import { boundsOf, middlesOf, nextCounty, ringsOf } from "./map-places.ts";
 import { paintedBy } from "./map-style.ts";
 import type { MapView, Viewer } from "./view-link.ts";
@@ -13,11 +13,13 @@ export type LiveMapOptions = OpenMapOptions & {
 };
 export type LiveMap = Viewer & {
 	/** Resolves when the figures are painted whole: until then a slow machine shows half a map. */
-	show: (figures: FiguresAnswer, hue: Hue) => Promise<void>;
+	show: (figures: FiguresAnswer, hue: DrawnHue) => Promise<void>;
 	/** Outlines every county drawn from an area; null for none. */
 	mark: (areaKey: string | null) => void;
 	/** The county that lies next in a direction, so that arrow keys walk over the map. */
 	next: (fips: string | null, direction: Direction) => string | null;
+	/** Goes to one state, which is then what `reset` shows; to all of them with null. */
+	frame: (state: string | null) => void;
 	zoom: (steps: number) => void;
 	reset: () => void;
 	remove: () => void;
@@ -28,7 +30,7 @@ export type Direction = "up" | "down" | "left" | "right";
 export async function createLiveMap(options: LiveMapOptions): Promise<LiveMap> {
 	const map = await openMap(options);
 	listen(map, options);
-	return controls(map, options.geometry, boundsOf(options.geometry));
+	return controls(map, options.geometry);
 }
 
 function listen(map: LibraryMap, { onPoint, onChoose }: LiveMapOptions) {
@@ -44,9 +46,10 @@ function listen(map: LibraryMap, { onPoint, onChoose }: LiveMapOptions) {
 	});
 }
 
-function controls(map: LibraryMap, geometry: GeometryAnswer, bounds: [number, number, number, number]): LiveMap {
+function controls(map: LibraryMap, geometry: GeometryAnswer): LiveMap {
+	let home = boundsOf(geometry);
 	const middles = middlesOf(geometry);
-	let shown: { figures: FiguresAnswer; hue: Hue } | undefined;
+	let shown: { figures: FiguresAnswer; hue: DrawnHue } | undefined;
 	const paint = () => shown && repaint(map, shown.figures, colorsOfPage(shown.hue));
 	const dark = matchMedia("(prefers-color-scheme: dark)");
 	dark.addEventListener("change", paint);
@@ -70,8 +73,12 @@ function controls(map: LibraryMap, geometry: GeometryAnswer, bounds: [number, nu
 			map.getSource<GeoJSONSource>("marked")?.setData(border);
 		},
 		next: (fips, direction) => nextCounty(middles, fips, direction),
+		frame(state) {
+			home = boundsOf(geometry, state);
+			map.fitBounds(home, { padding: 16, duration: 0 });
+		},
 		zoom: (steps) => map.easeTo({ zoom: map.getZoom() + steps, duration: 150 }),
-		reset: () => map.fitBounds(bounds, { padding: 16, duration: 150 }),
+		reset: () => map.fitBounds(home, { padding: 16, duration: 150 }),
 		remove() {
 			dark.removeEventListener("change", paint);
 			map.remove();

@@ -1,4 +1,4 @@
-import type { Hue } from "./map-data.ts";
+import type { DrawnHue } from "./map-data.ts";
 
 export type MapColors = Record<"paper" | "ink" | "line" | "hatch" | "unasked" | "mark", string> & {
 	/** Index 1 to 6; 0 is empty, so that a step is its own index. */
@@ -6,7 +6,7 @@ export type MapColors = Record<"paper" | "ink" | "line" | "hatch" | "unasked" | 
 };
 
 /** The page's own colours as they are now, so that the canvas follows light, dark and the reader's settings. */
-export function colorsOfPage(hue: Hue): MapColors {
+export function colorsOfPage(hue: DrawnHue): MapColors {
 	const style = getComputedStyle(document.documentElement);
 	const read = (name: string) => style.getPropertyValue(`--color-${name}`).trim();
 	return {

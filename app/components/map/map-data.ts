@@ -34,6 +34,8 @@ export const GeometryAnswer = z.object({
 export type GeometryAnswer = z.infer<typeof GeometryAnswer>;
 
 export type Hue = "loss" | "bloom" | "pests" | "cold" | "yield";
+/** A subject's palette from little to much, or `normal`: two hues that part in the middle. */
+export type DrawnHue = Hue | "normal";
 
 /** Which steps of a palette of six stand for how many classes: spread out, and never the palest, which is near to paper. */
 const steps: Record<number, number[]> = { 1: [4], 2: [2, 5], 3: [2, 4, 6], 4: [2, 3, 5, 6], 5: [2, 3, 4, 5, 6] };

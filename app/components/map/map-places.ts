@@ -53,8 +53,10 @@ function boxOf(points: [number, number][]): Box {
 	return box;
 }
 
-export function boundsOf(geometry: Pick<GeometryAnswer, "counties">): Box {
-	return boxOf(featuresOf(geometry).flatMap(({ geometry: { coordinates } }) => positions(coordinates)));
+/** West, south, east and north of all counties, or of one state's. */
+export function boundsOf(geometry: Pick<GeometryAnswer, "counties">, state: string | null = null): Box {
+	const within = featuresOf(geometry).filter(({ properties }) => state === null || properties.fips.startsWith(state));
+	return boxOf(within.flatMap(({ geometry: { coordinates } }) => positions(coordinates)));
 }
 
 /** The middle of each county's box, as steps from the map's middle; a step east is as long as a step north. */

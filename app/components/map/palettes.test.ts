@@ -93,3 +93,24 @@ test.each(Object.keys(seen))("neighbouring classes of every palette are told apa
 	}
 	expect(tooNear).toEqual([]);
 });
+
+test("the palette around a middle parts from it on both sides, and its two far ends are never taken for each other", () => {
+	const tooNear: string[] = [];
+	for (const [vision, matrix] of Object.entries(seen)) {
+		for (const [name, part] of Object.entries(parts)) {
+			const labs = [2, 3, 4, 5, 6].map((step) => labOf(within(times(matrix, linearOf(part, `normal-${step}`)))));
+			const lightness = labs.map(([l]) => (name === "light" ? l : -l));
+			expect(Math.max(...lightness)).toBe(lightness[2]);
+			for (const [one, lab] of labs.entries()) {
+				for (const [other, far] of labs.entries()) {
+					const distance = Math.hypot(...lab.map((value, axis) => value - far[axis]!));
+					// Classes that lie apart in the legend need not be as far from each other as neighbours.
+					const least = Math.abs(one - other) === 1 ? leastDistance : 7;
+					if (one < other && distance < least)
+						tooNear.push(`${vision} ${name} ${one} ${other}: ${distance.toFixed(1)}`);
+				}
+			}
+		}
+	}
+	expect(tooNear).toEqual([]);
+});

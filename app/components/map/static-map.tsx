@@ -1,9 +1,9 @@
 import "./map.css";
-import { memo, useId } from "react";
+import { memo, type ReactNode, useId } from "react";
 import { useTranslation } from "react-i18next";
 import { classes as classNames } from "#app/components/classes.ts";
 import { fillOf } from "./fills.ts";
-import type { DrawnCell, DrawnClass, Hue } from "./map-data.ts";
+import type { DrawnCell, DrawnClass, DrawnHue } from "./map-data.ts";
 import { outerEdge, pathOfEdges, ringsOfPath } from "./outer-edge.ts";
 import { MapPatterns } from "./patterns.tsx";
 
@@ -14,12 +14,17 @@ export type DrawnPicture = {
 	stateLines: string;
 	stateNames: { stateFips: string; x: number; y: number }[];
 };
-export type StaticMapProps = {
+/** What a map draws: the sheet, its figures, and how they are coloured. */
+export type DrawnMap = {
 	picture: DrawnPicture;
 	cells: DrawnCell[];
 	classes: DrawnClass[];
 	areaOfCounty: Record<string, string | null>;
-	hue: Hue;
+	hue: DrawnHue;
+	/** Each area's figure in a sentence, which whoever points at it is told without scripts. */
+	sentences?: Record<string, string>;
+};
+export type StaticMapProps = DrawnMap & {
 	/** What the map shows, in a sentence; the figures themselves stand in the table beside it. */
 	label: string;
 	selected?: string | null;
@@ -28,19 +33,9 @@ export type StaticMapProps = {
 };
 
 /** The map drawn on the server: for a page without scripts or WebGL, for print, and until the live map is there. */
-export const StaticMap = memo(function StaticMap({
-	picture,
-	cells,
-	classes,
-	areaOfCounty,
-	hue,
-	label,
-	selected,
-	framed,
-}: StaticMapProps) {
-	const { t } = useTranslation();
+export const StaticMap = memo(function StaticMap({ label, selected, framed, ...drawn }: StaticMapProps) {
 	const id = useId();
-	const byArea = new Map(cells.map((cell) => [cell.areaKey, cell]));
+	const { picture, areaOfCounty } = drawn;
 	const chosen = picture.counties.filter(({ fips }) => selected && areaOfCounty[fips] === selected);
 	const border = pathOfEdges(outerEdge(chosen.flatMap(({ outline }) => ringsOfPath(outline))));
 	return (
@@ -51,10 +46,38 @@ export const StaticMap = memo(function StaticMap({
 			className={classNames("mx-auto block w-full", framed ? "h-full print:h-auto" : "h-auto max-h-[80vh]")}
 		>
 			<title id={`${id}-title`}>{label}</title>
+			<MapDrawing id={id} {...drawn}>
+				{border && <path d={border} className="map-selected-halo" />}
+				{border && <path d={border} className="map-selected" />}
+			</MapDrawing>
+		</svg>
+	);
+});
+
+/** The map itself, inside of whatever drawing holds it; what lies over its lines comes as children. */
+export function MapDrawing({
+	id,
+	picture,
+	cells,
+	classes,
+	areaOfCounty,
+	hue,
+	sentences,
+	children,
+}: DrawnMap & { id: string; children?: ReactNode }) {
+	const { t } = useTranslation();
+	const byArea = new Map(cells.map((cell) => [cell.areaKey, cell]));
+	return (
+		<>
 			<MapPatterns id={id} />
 			{picture.counties.map(({ fips, outline }) => {
-				const cell = byArea.get(areaOfCounty[fips] ?? "");
-				return <path key={fips} d={outline} {...lookOfShape(cell, hue, classes.length, id)} />;
+				const areaKey = areaOfCounty[fips] ?? "";
+				const said = sentences?.[areaKey];
+				return (
+					<path key={fips} d={outline} {...lookOfShape(byArea.get(areaKey), hue, classes.length, id)}>
+						{said && <title>{said}</title>}
+					</path>
+				);
 			})}
 			<Hatching
 				id={`${id}-hatched`}
@@ -64,18 +87,17 @@ export const StaticMap = memo(function StaticMap({
 				)}
 			/>
 			<path d={picture.stateLines} className="map-states" />
-			{border && <path d={border} className="map-selected-halo" />}
-			{border && <path d={border} className="map-selected" />}
-			<g aria-hidden="true">
+			{children}
+			<g aria-hidden="true" pointerEvents="none">
 				{picture.stateNames.map(({ stateFips, x, y }) => (
 					<text key={stateFips} x={x} y={y} className="map-state-name">
 						{t(`state.${stateFips}`)}
 					</text>
 				))}
 			</g>
-		</svg>
+		</>
 	);
-});
+}
 
 /** As far apart as the lines of the pattern that legends have. */
 const hatchStep = 7 * Math.SQRT2;
@@ -96,13 +118,13 @@ function Hatching({ id, picture, outlines }: { id: string; picture: DrawnPicture
 			<clipPath id={id}>
 				<path d={outlines.join("")} />
 			</clipPath>
-			<path d={lines.join("")} clipPath={`url(#${id})`} className="map-hatch" />
+			<path d={lines.join("")} clipPath={`url(#${id})`} className="map-hatch" pointerEvents="none" />
 		</>
 	);
 }
 
 /** Nothing but the class name and the pattern: a withheld county is told from a blank one by its hatching only. */
-function lookOfShape(cell: DrawnCell | undefined, hue: Hue, classCount: number, id: string) {
+function lookOfShape(cell: DrawnCell | undefined, hue: DrawnHue, classCount: number, id: string) {
 	if (cell?.look === "rough") return { className: "map-county", fill: `url(#${id}-rough)` };
 	if (cell?.look === "withheld") return { className: "map-county map-blank map-withheld" };
 	if (cell?.look === "no_growers") return { className: "map-county map-blank" };

@@ -1,14 +1,14 @@
 import { type RefObject, useEffect, useRef, useState } from "react";
 import { useTranslation } from "react-i18next";
 import type { LiveMap } from "./live-map.client.ts";
-import { FiguresAnswer, GeometryAnswer, type Hue } from "./map-data.ts";
+import { FiguresAnswer, GeometryAnswer, type DrawnHue } from "./map-data.ts";
 
 export type LiveMapState = "drawing" | "ready" | "no_figures" | "no_map";
 type Handlers = {
 	onPoint: (fips: string | null, at: { x: number; y: number } | null) => void;
 	onChoose: (fips: string) => void;
 };
-type Wanted = { countiesAddress: string; figuresAddress: string; hue: Hue };
+type Wanted = { countiesAddress: string; figuresAddress: string; hue: DrawnHue };
 
 /**
  * Brings the live map up behind the drawn one. "no_map": no WebGL, or the outlines or the library did not come; the drawn

@@ -1,11 +1,12 @@
 import { useState } from "react";
 import { useTranslation } from "react-i18next";
-import { href, redirect, type ShouldRevalidateFunctionArgs } from "react-router";
+import { href, redirect, useSearchParams, type ShouldRevalidateFunctionArgs } from "react-router";
 import type { Route } from "./+types/map";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { useAreaName } from "#app/components/map/area-name.ts";
 import { CountyMap } from "#app/components/map/county-map.tsx";
 import { Legend } from "#app/components/map/legend.tsx";
+import { useMapFinding } from "#app/components/map/use-map-finding.ts";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
@@ -13,61 +14,51 @@ import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { formatterFor } from "#app/lib/format.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { type MapFigures, mapFiguresOf, pairFiguresOf } from "#app/publish/figures.server.ts";
 import { countiesAddress } from "#app/publish/geometry.server.ts";
-import { choose, type MapQuery, readMapQuery } from "#app/publish/map-choice.ts";
+import { inState, type MapQuery, readMapQuery } from "#app/publish/map-choice.ts";
+import { findMapView, isView, listWholeFigures, type MapView } from "#app/publish/map-view.server.ts";
 import { pictureOf } from "#app/publish/picture.server.ts";
-import { findRelease, listCoveredStates, listCrops, listMeasures, listReleases } from "#app/publish/releases.server.ts";
-import type { Release, ReleaseMeasure } from "#app/publish/release.ts";
 import { differencesOf, orderSeasonRows, pairRows } from "#app/publish/season-pair.ts";
 import { namedLike, tableRows } from "#app/publish/table-rows.ts";
+import { countedOn } from "./parts/map-counts.ts";
+import { MapFiles } from "./parts/map-files.tsx";
 import { MapForm } from "./parts/map-form.tsx";
 import { MapPair, type Pair } from "./parts/map-pair.tsx";
 import { MapTable } from "./parts/map-table.tsx";
 import { ReleaseNotice } from "./parts/release-state.tsx";
 import { useChosenArea } from "./parts/use-chosen-area.ts";
+import { useViewTitle } from "./parts/use-view-title.ts";
 
 export async function loader({ request, context }: Route.LoaderArgs) {
 	const query = readMapQuery(request.url);
-	const releases = await listReleases();
-	const release = query.release ? await findRelease(query.release) : releases[0];
-	if (!release && query.release) throw refusal("release_not_found");
-	if (release?.withdrawn) throw redirect(href("/data/:release", { release: `${release.number}` }));
-	if (!release) return { map: null };
-
-	const measures = await listMeasures(release.releaseId);
-	const measureChoice = choose(
-		query.measure,
-		measures.map(({ key }) => key),
-	);
-	const measure = measures.find(({ key }) => key === measureChoice.key);
-	if (!measure) return { map: null };
-	const crops = await listCrops(release.releaseId, measure.key);
-	const cropChoice = choose(query.crop, crops);
-	const [figures, states] = await Promise.all([
-		mapFiguresOf(release, measure, cropChoice.key ?? "all", query.kind),
-		listCoveredStates(release.releaseId),
-	]);
+	const view = await findMapView(query);
+	if (view === "not_found") throw refusal("release_not_found");
+	if (!isView(view)) {
+		if (typeof view === "object") throw redirect(href("/data/:release", { release: `${view.withdrawn}` }));
+		return { map: null };
+	}
+	const { figures, measures, states, state } = view;
+	const [picture, outlines] = [pictureOf(states, state), countiesAddress(states)];
+	if (!picture || !outlines) return { map: null };
 	const { compare } = formatterFor(getLanguage(context), getT(context, "common"));
-	const [picture, outlines] = [pictureOf(states), countiesAddress(states)];
-	if (!figures || !picture || !outlines) return { map: null };
-	const pair = await pairOf(release, measure, figures.cropKey, query, compare);
-	const offered = release.replacedBy ? [release, ...releases] : releases;
-	const seasons = offered.map(({ number, season, title }) => ({ number, season, title }));
+	const pair = pairTable(view, query, compare);
 	return {
 		map: {
 			...figures,
 			query,
 			measures: measures.map(({ key, label }) => ({ key, label })),
-			crops,
-			releases: seasons,
-			changed: measureChoice.changed || cropChoice.changed,
+			crops: view.crops,
+			releases: view.releases.map(({ number, season, title }) => ({ number, season, title })),
+			changed: view.changed,
 			pair,
 			beside: pair && (query.beside ?? null),
-			besideMissing: Boolean(query.beside) && !pair && query.beside !== release.number,
+			besideMissing: view.besideMissing,
+			states,
+			state,
+			wholes: await listWholeFigures(view),
 			picture,
 			outlines,
-			rows: pair ? [] : tableRows(figures.cells, oneMapOrder(query), compare),
+			rows: pair ? [] : tableRows(inState(figures.cells, state), oneMapOrder(query), compare),
 		},
 	};
 }
@@ -76,24 +67,15 @@ export async function loader({ request, context }: Route.LoaderArgs) {
 const oneMapOrder = ({ q, sort, direction }: MapQuery) =>
 	({ q, sort: sort === "value" ? "value" : "area", direction }) as const;
 
-/** The chosen release beside the other that is asked for, the earlier season first; null where they cannot stand so. */
-async function pairOf(
-	release: Release,
-	measure: ReleaseMeasure,
-	cropKey: string,
-	query: MapQuery,
-	compare: (a: string, b: string) => number,
-): Promise<Pair | null> {
-	const other = query.beside ? await findRelease(query.beside) : undefined;
-	const figures = other && (await pairFiguresOf(release, measure, other, cropKey, query.kind));
-	if (!figures) return null;
-	const [earlier, later] = figures.toSorted(bySeason) as [MapFigures, MapFigures];
-	const rows = namedLike(pairRows(earlier.cells, later.cells, measure.decimals), query.q);
+/** Both seasons with the rows of their one table and with what was not alike in them. */
+function pairTable(view: MapView, query: MapQuery, compare: (a: string, b: string) => number): Pair | null {
+	if (!view.pair) return null;
+	const [earlier, later] = view.pair;
+	const all = pairRows(earlier.cells, later.cells, later.measure.decimals);
+	const rows = namedLike(inState(all, view.state), query.q);
 	const order = { key: query.sort, direction: query.direction };
 	return { earlier, later, rows: orderSeasonRows(rows, order, compare), differences: differencesOf(earlier, later) };
 }
-
-const bySeason = ({ release: a }: MapFigures, { release: b }: MapFigures) => a.season - b.season || a.number - b.number;
 
 function withoutArea(url: URL): string {
 	const search = new URLSearchParams(url.search);
@@ -123,18 +105,20 @@ type MapData = NonNullable<Route.ComponentProps["loaderData"]["map"]>;
 
 function Map({ map }: { map: MapData }) {
 	const { t, i18n } = useTranslation("public");
+	const [search] = useSearchParams();
 	const { release, measure, cropKey, pair } = map;
-	const title = t("map.shown", {
-		measure: wordsIn(measure.label, i18n.language),
-		crop: t(`common:crop.${cropKey}`),
-		season: pair
-			? t("map.two.seasons", { earlier: pair.earlier.release.season, later: pair.later.release.season })
-			: release.season,
+	const title = useViewTitle()({
+		measure,
+		cropKey,
+		state: map.state,
+		shown: pair ? [pair.earlier, pair.later] : [map],
 	});
+	const finding = useMapFinding()(map);
 	const [chosen, chooseArea] = useChosenArea();
 	return (
 		<Page title={title} lead={wordsIn(measure.description, i18n.language)}>
 			<ReleaseNotice release={release} />
+			{finding && <p className="mb-6 max-w-prose text-xl font-bold">{finding}</p>}
 			<MapForm map={map} chosen={chosen} onChoose={chooseArea} />
 			{map.changed && <Notice tone="info">{t("map.changed", { shown: title })}</Notice>}
 			{map.besideMissing && <Notice tone="info">{t("map.two.missing", { shown: title })}</Notice>}
@@ -143,6 +127,7 @@ function Map({ map }: { map: MapData }) {
 			) : (
 				<OneMap map={map} title={title} chosen={chosen} onChoose={chooseArea} />
 			)}
+			<MapFiles search={search} language={i18n.language} />
 		</Page>
 	);
 }
@@ -159,11 +144,10 @@ function OneMap({ map, title, chosen, onChoose }: OneMapProps) {
 	const format = useFormat();
 	const areaName = useAreaName();
 	const [pointed, setPointed] = useState<string | null>(null);
-	const { release, measure, cropKey, kind, cells, areaOfCounty } = map;
+	const { release, measure, cropKey, kind, cells, areaOfCounty, hue, way, state } = map;
 	const byArea = Object.fromEntries(cells.map((cell) => [cell.areaKey, cell]));
-	const drawn = { cells, classes: map.classes, areaOfCounty, hue: measure.hue, picture: map.picture };
-	const figuresAddress = `${href("/map/figures/:release/:measure/:crop", { release: `${release.number}`, measure: measure.key, crop: cropKey })}?kind=${kind}`;
-	const withoutCell = Object.values(areaOfCounty).filter((areaKey) => !areaKey || !byArea[areaKey]).length;
+	const drawn = { cells, classes: map.classes, areaOfCounty, hue, picture: map.picture };
+	const figuresAddress = `${href("/map/figures/:release/:measure/:crop", { release: `${release.number}`, measure: measure.key, crop: cropKey })}?kind=${kind}&classes=${way}`;
 	return (
 		<>
 			<div className="grid grid-cols-[minmax(0,1fr)] gap-6 lg:grid-cols-[minmax(0,1fr)_17rem]">
@@ -173,20 +157,15 @@ function OneMap({ map, title, chosen, onChoose }: OneMapProps) {
 					countiesAddress={map.outlines}
 					figuresAddress={figuresAddress}
 					measure={measure}
+					focus={state}
 					chosen={chosen && byArea[chosen] ? chosen : null}
 					pointed={pointed}
 					nameOf={(areaKey) => (byArea[areaKey] ? areaName(byArea[areaKey]) : t("area.unnamed"))}
 					onChoose={onChoose}
 				/>
 				<div>
-					<Legend
-						title={title}
-						cells={cells}
-						classes={map.classes}
-						notAsked={kind === "county" ? withoutCell : 0}
-						hue={measure.hue}
-						measure={measure}
-					/>
+					<Legend title={title} {...countedOn(map, state)} classes={map.classes} hue={hue} measure={measure} />
+					<p className="mt-4 text-sm text-quiet">{t(`map.classes.${way}`)}</p>
 					<p className="mt-4 text-sm text-quiet">{t(`map.counted.${kind}`)}</p>
 					<p className="mt-4 text-sm text-quiet">{t("map.withheldWhy")}</p>
 					<p className="mt-4 text-sm text-quiet">

@@ -6,6 +6,7 @@ import { useAreaName } from "#app/components/map/area-name.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { MapCell } from "#app/publish/cell.ts";
+import { type ClassWay, classWays } from "#app/publish/class-steps.ts";
 import type { Words } from "#app/lib/words.ts";
 
 export type MapFormData = {
@@ -15,6 +16,10 @@ export type MapFormData = {
 	measure: { key: string };
 	cropKey: string;
 	kind: string;
+	way: ClassWay;
+	states: string[];
+	/** The state that the map is zoomed to. */
+	state: string | null;
 	cells: MapCell[];
 	measures: { key: string; label: Words }[];
 	crops: string[];
@@ -26,7 +31,7 @@ type MapFormProps = { map: MapFormData; chosen: string | null; onChoose: (areaKe
 export function MapForm({ map, chosen, onChoose }: MapFormProps) {
 	const { t, i18n } = useTranslation("public");
 	const areaName = useAreaName();
-	const key = `${map.release.number} ${map.measure.key} ${map.cropKey} ${map.kind} ${map.beside}`;
+	const key = `${map.release.number} ${map.measure.key} ${map.cropKey} ${map.kind} ${map.beside} ${map.way} ${map.state}`;
 	const measures = map.measures.map(({ key: value, label }) => ({ value, label: wordsIn(label, i18n.language) }));
 	const releases = map.releases.map(({ number, season, title }) => ({
 		value: `${number}`,
@@ -67,6 +72,23 @@ export function MapForm({ map, chosen, onChoose }: MapFormProps) {
 				label={t("map.form.kind")}
 				value={map.kind}
 				options={["county", "district"].map((kind) => ({ value: kind, label: t(`common:areaKind.plural.${kind}`) }))}
+			/>
+			{map.states.length > 1 && (
+				<Choice
+					name="state"
+					label={t("map.form.state")}
+					value={map.state ?? ""}
+					options={[
+						{ value: "", label: t("map.form.allStates") },
+						...map.states.map((state) => ({ value: state, label: t(`common:state.${state}`) })),
+					]}
+				/>
+			)}
+			<Choice
+				name="classes"
+				label={t("map.form.classes")}
+				value={map.way}
+				options={classWays.map((way) => ({ value: way, label: t(`map.form.way.${way}`) }))}
 			/>
 			<Choice
 				key={chosen}

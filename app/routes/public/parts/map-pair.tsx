@@ -13,6 +13,7 @@ import { daysInYear } from "#app/lib/day-of-year.ts";
 import type { MapFigures } from "#app/publish/figures.server.ts";
 import type { SeasonDifference, SeasonRow } from "#app/publish/season-pair.ts";
 import type { MapQuery } from "#app/publish/map-choice.ts";
+import { countedOn } from "./map-counts.ts";
 import { PairTable } from "./map-pair-table.tsx";
 
 export type Pair = {
@@ -21,7 +22,7 @@ export type Pair = {
 	rows: SeasonRow[];
 	differences: SeasonDifference[];
 };
-type Shown = { picture: DrawnPicture; outlines: string; query: MapQuery };
+type Shown = { picture: DrawnPicture; outlines: string; query: MapQuery; state: string | null };
 type Choosing = { chosen: string | null; onChoose: (areaKey: string | null) => void };
 
 /** "2024 (release 3)": two editions of one season keep apart. */
@@ -64,18 +65,17 @@ export function MapPair({
 			<div className="mt-6 grid gap-x-10 gap-y-4 sm:grid-cols-2">
 				<Legend
 					title={t("map.two.legend", { title })}
-					cells={earlier.cells}
+					{...countedOn(earlier, shown.state)}
 					classes={earlier.classes}
-					notAsked={withoutCell(earlier)}
-					hue={later.measure.hue}
+					hue={later.hue}
 					measure={later.measure}
 					beside={{
-						cells: later.cells,
-						notAsked: withoutCell(later),
+						...countedOn(later, shown.state),
 						names: [columnName(earlier, later), columnName(later, earlier)],
 					}}
 				/>
 				<div className="grid gap-4 self-start text-sm text-quiet">
+					<p>{t(`map.classes.${later.way}`)}</p>
 					<p>{t(`map.counted.${later.kind}`)}</p>
 					<p>{t("map.withheldWhy")}</p>
 					{[earlier, later].map((of) => (
@@ -91,14 +91,9 @@ export function MapPair({
 	);
 }
 
-const columnName = (of: MapFigures, other: MapFigures) =>
+/** "2024", or "2024 (3)" where both are of one season. */
+export const columnName = (of: MapFigures, other: MapFigures) =>
 	of.release.season === other.release.season ? `${of.release.season} (${of.release.number})` : `${of.release.season}`;
-
-/** Counties of the release that its survey has no cell for; in the map of districts they are not counted. */
-function withoutCell({ areaOfCounty, cells, kind }: MapFigures): number {
-	const known = new Set(cells.map(({ areaKey }) => areaKey));
-	return kind === "county" ? Object.values(areaOfCounty).filter((key) => !key || !known.has(key)).length : 0;
-}
 
 type SeasonMapProps = Choosing & {
 	figures: MapFigures;
@@ -113,7 +108,7 @@ function SeasonMap({ figures, other, shown, chosen, onChoose, pointed, onPoint, 
 	const { t, i18n } = useTranslation("public");
 	const areaName = useAreaName();
 	const season = useSeasonName()(figures);
-	const { release, measure, cropKey, kind, cells, classes, areaOfCounty } = figures;
+	const { release, measure, cropKey, kind, cells, classes, areaOfCounty, hue, way } = figures;
 	const title = t("map.shown", {
 		measure: wordsIn(measure.label, i18n.language),
 		crop: t(`common:crop.${cropKey}`),
@@ -133,12 +128,12 @@ function SeasonMap({ figures, other, shown, chosen, onChoose, pointed, onPoint, 
 		<section aria-label={title}>
 			<h2 className="mb-2 text-lg font-bold">{season}</h2>
 			<CountyMap
-				{...{ cells, classes, areaOfCounty, nameOf, measure, pointed, onPoint, onChoose, link }}
-				hue={measure.hue}
+				{...{ cells, classes, areaOfCounty, hue, nameOf, measure, pointed, onPoint, onChoose, link }}
+				focus={shown.state}
 				picture={shown.picture}
 				label={t("map.alternative", { title })}
 				countiesAddress={shown.outlines}
-				figuresAddress={`${address}?kind=${kind}&beside=${other.release.number}`}
+				figuresAddress={`${address}?kind=${kind}&beside=${other.release.number}&classes=${way}`}
 				chosen={known ? chosen : null}
 			/>
 		</section>
