@@ -161,6 +161,7 @@ export default [
 		]),
 	]),
 
+	route("network/log.csv", "routes/network/log-csv.ts"),
 	...prefix("network", [
 		layout("routes/network/layout.tsx", [
 			index("routes/network/people.tsx"),

@@ -1,11 +1,14 @@
 import { sql } from "kysely";
 import { z } from "zod";
 import { Words } from "#app/lib/words.ts";
-import type { LogQuery } from "./log-actions.ts";
+import { selectEvents } from "./event-filter.server.ts";
+import type { LogQuery } from "./log-query.ts";
 import type { Trx } from "./scope.server.ts";
 import type { Coordinator } from "./viewer.ts";
 
-const pageSize = 50;
+export const logPageSize = 50;
+/** Beyond this the log's length is told as "more than". */
+const countedTo = 10_000;
 
 /**
  * What of an event's detail is told. Anything else that was logged stays unsaid: which operation answered is not a
@@ -16,11 +19,13 @@ const Told = z.object({
 	/** How many were asked when a survey was opened, and how many mails were queued. */
 	operations: z.number().optional().catch(undefined),
 	queued: z.number().optional().catch(undefined),
-	/** How many operations were changed or handed out at once. */
+	/** How many operations were changed or handed out at once, and how many events. */
 	growers: z.number().optional().catch(undefined),
+	events: z.number().optional().catch(undefined),
 	/** The new closing time. */
 	to: z.iso.datetime().optional().catch(undefined),
-	/** A release's number, and a report's address. */
+	/** A form's version, a release's number, and a report's address. */
+	version: z.number().optional().catch(undefined),
 	number: z.number().optional().catch(undefined),
 	slug: z.string().optional().catch(undefined),
 	byLink: z.boolean().optional().catch(undefined),
@@ -35,43 +40,87 @@ export type LoggedEvent = {
 	/** Whom it is about, where that is a person: of a grant or a request. */
 	about: string | null;
 	survey: { season: number; title: Words } | null;
+	form: Words | null;
 	stateFips: string | null;
 	told: z.infer<typeof Told>;
 };
 
-/** The one place that reads the log. Search looks at who did it, to whom, and the address of a report. */
-function selectEvents(trx: Trx, _viewer: Coordinator, { q, show }: LogQuery) {
-	const pattern = `%${q.replace(/[\\%_]/g, String.raw`\$&`)}%`;
-	// People are few and events many: who is meant is found first, and the log then goes by ids.
-	const meant = trx
-		.selectFrom("auth.person")
-		.where((eb) => eb.or([eb("display_name", "ilike", pattern), eb("email", "ilike", pattern)]));
-	const requests = trx
-		.selectFrom("auth.access_request")
-		.where("person_id", "in", meant.select("person_id"))
-		.select(sql<string>`access_request_id::text`.as("id"));
-	return trx
-		.selectFrom("log.event as e")
-		.$if(show !== "all", (events) => events.where("e.action", "like", `${show}.%`))
-		.$if(q !== "", (events) =>
-			events.where((eb) =>
-				eb.or([
-					eb("e.person_id", "in", meant.select("person_id")),
-					eb("e.subject_id", "in", meant.select(sql<string>`person_id::text`.as("id"))),
-					eb("e.subject_id", "in", requests),
-					eb(sql`e.detail ->> 'slug'`, "ilike", pattern),
-				]),
-			),
-		);
+export type LogPage = {
+	rows: LoggedEvent[];
+	/** The events beside which the neighbouring pages begin; null where there is none. */
+	older: number | null;
+	newer: number | null;
+	total: number;
+	moreThanTotal: boolean;
+};
+
+/**
+ * A page of what was done, newest first. Pages begin beside an event and not at a number, so that what is logged meanwhile
+ * moves none of them.
+ */
+export async function listEvents(trx: Trx, viewer: Coordinator, query: LogQuery): Promise<LogPage> {
+	const counted = await trx
+		.selectFrom(
+			selectEvents(trx, viewer, query)
+				.select("e.event_id")
+				.limit(countedTo + 1)
+				.as("c"),
+		)
+		.select((eb) => eb.fn.countAll<number>().as("total"))
+		.executeTakeFirstOrThrow();
+	const count = { total: Math.min(counted.total, countedTo), moreThanTotal: counted.total > countedTo };
+	if (query.newer) {
+		const found = await readEvents(trx, viewer, query, { newer: query.newer }, logPageSize + 1);
+		// A page that reaches the newest is the first page, whole.
+		if (found.length > logPageSize) {
+			const rows = found.slice(0, logPageSize).toReversed();
+			return { rows, newer: rows[0]!.eventId, older: rows.at(-1)!.eventId, ...count };
+		}
+	}
+	const from = query.newer ? {} : { older: query.older };
+	const found = await readEvents(trx, viewer, query, from, logPageSize + 1);
+	const rows = found.slice(0, logPageSize);
+	return {
+		rows,
+		newer: from.older ? (rows[0]?.eventId ?? null) : null,
+		older: found.length > logPageSize ? rows.at(-1)!.eventId : null,
+		...count,
+	};
 }
 
-/** A page of what was done, newest first. */
-export async function listEvents(trx: Trx, viewer: Coordinator, query: LogQuery) {
-	const events = selectEvents(trx, viewer, query);
-	const { total } = await events.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
-	const pageCount = Math.max(1, Math.ceil(total / pageSize));
-	const page = Math.min(query.page, pageCount);
-	const rows = await events
+/** All events of a filter, newest first, or undefined where they are more than a file may hold. */
+export async function listAllEvents(
+	trx: Trx,
+	viewer: Coordinator,
+	query: LogQuery,
+	most: number,
+): Promise<LoggedEvent[] | undefined> {
+	const rows = await readEvents(trx, viewer, query, {}, most + 1);
+	return rows.length > most ? undefined : rows;
+}
+
+/** Events before one, or after one and then the oldest first. */
+async function readEvents(
+	trx: Trx,
+	viewer: Coordinator,
+	query: LogQuery,
+	beside: { older?: number | undefined; newer?: number | undefined },
+	most: number,
+): Promise<LoggedEvent[]> {
+	const direction = beside.newer ? "asc" : "desc";
+	const edge = beside.newer ?? beside.older;
+	const place = sql`(select b.happened_at, b.event_id from log.event b where b.event_id = ${edge ?? 0})`;
+	const side = beside.newer ? sql.raw(">") : sql.raw("<");
+	// The page is found first; what its events are about is then looked up for those alone.
+	const page = selectEvents(trx, viewer, query)
+		.$if(edge !== undefined, (events) => events.where(sql<boolean>`(e.happened_at, e.event_id) ${side} ${place}`))
+		.select(["e.event_id", "e.happened_at", "e.person_id", "e.action", "e.subject_kind", "e.subject_id"])
+		.select(["e.state_fips", "e.detail"])
+		.orderBy("e.happened_at", direction)
+		.orderBy("e.event_id", direction)
+		.limit(most);
+	const rows = await trx
+		.selectFrom(page.as("e"))
 		.leftJoin("auth.person as p", "p.person_id", "e.person_id")
 		// A subject is told by kind and id as text, whatever table it lies in.
 		.leftJoin("auth.access_request as r", (join) =>
@@ -81,17 +130,7 @@ export async function listEvents(trx: Trx, viewer: Coordinator, query: LogQuery)
 		.leftJoin("auth.person as g", (join) =>
 			join.on("e.subject_kind", "=", "person").on(sql`g.person_id::text`, "=", sql.ref("e.subject_id")),
 		)
-		.leftJoin("collect.release_draft as d", (join) =>
-			join.on("e.subject_kind", "=", "release_draft").on(sql`d.release_draft_id::text`, "=", sql.ref("e.subject_id")),
-		)
-		.leftJoin("collect.survey as s", (join) =>
-			join.on(
-				sql`s.survey_id::text`,
-				"=",
-				sql`case e.subject_kind when 'survey' then e.subject_id
-					when 'release_draft' then d.survey_id::text else e.detail ->> 'surveyId' end`,
-			),
-		)
+		.leftJoin("collect.survey as s", (join) => join.on(sql`s.survey_id::text`, "=", surveyOfEvent))
 		.select([
 			"e.event_id",
 			"e.happened_at",
@@ -101,16 +140,31 @@ export async function listEvents(trx: Trx, viewer: Coordinator, query: LogQuery)
 			sql<string | null>`coalesce(g.display_name, a.display_name)`.as("about"),
 			"s.season",
 			"s.title",
+			formOfEvent.as("form"),
 			"e.state_fips",
 			"e.detail",
 		])
-		.orderBy("e.happened_at", "desc")
-		.orderBy("e.event_id", "desc")
-		.limit(pageSize)
-		.offset((page - 1) * pageSize)
+		.orderBy("e.happened_at", direction)
+		.orderBy("e.event_id", direction)
 		.execute();
-	return { rows: rows.map(toEvent), total, page, pageCount };
+	return rows.map(toEvent);
 }
+
+/** The survey that an event is about, as text. */
+const surveyOfEvent = sql<string | null>`case e.subject_kind
+	when 'survey' then e.subject_id
+	when 'release_draft' then (select d.survey_id::text from collect.release_draft d
+		where d.release_draft_id::text = e.subject_id)
+	when 'release' then (select r.series_id::text from release.release r where r.release_id::text = e.subject_id)
+	when 'report' then (select r.series_id::text from publish.report b join release.release r using (release_id)
+		where b.report_id::text = e.subject_id)
+	else e.detail ->> 'surveyId' end`;
+
+/** The newest title of the form that an event is about. */
+const formOfEvent = sql<unknown>`case when e.subject_kind = 'form' then coalesce(
+	(select v.definition -> 'title' from collect.form_version v where v.form_id::text = e.subject_id
+		order by v.version desc limit 1),
+	(select d.draft -> 'title' from collect.form_draft d where d.form_id::text = e.subject_id)) end`;
 
 type EventRow = {
 	event_id: number;
@@ -121,6 +175,7 @@ type EventRow = {
 	about: string | null;
 	season: number | null;
 	title: unknown;
+	form: unknown;
 	state_fips: string | null;
 	detail: unknown;
 };
@@ -133,6 +188,7 @@ function toEvent(row: EventRow): LoggedEvent {
 		action: row.action,
 		about: row.about,
 		survey: row.season === null ? null : { season: row.season, title: Words.parse(row.title) },
+		form: Words.safeParse(row.form).data ?? null,
 		stateFips: row.state_fips,
 		told: Told.parse(row.detail),
 	};

@@ -1,5 +1,3 @@
-import { z } from "zod";
-
 /** Everything that is logged, by subject. Each has its words in `network:log.action.<subject>.<verb>`. */
 export const logActions = {
 	auth: ["signed_in", "sign_in_failed"],
@@ -33,6 +31,7 @@ export const logActions = {
 	key: ["made", "revoked"],
 	report: ["started", "submitted", "sent_back", "scheduled", "unscheduled", "published", "corrected"],
 	district: ["redrawn", "put_back"],
+	log: ["exported"],
 } as const;
 
 type Actions = typeof logActions;
@@ -40,11 +39,3 @@ type Actions = typeof logActions;
 export type LogAction = { [Subject in keyof Actions]: `${Subject}.${Actions[Subject][number]}` }[keyof Actions];
 export type LogSubject = keyof Actions;
 export const logSubjects = Object.keys(logActions) as LogSubject[];
-
-/** `?q=&show=&page=` of the log. A wrong or missing part falls back; nothing typed is an error. */
-export const LogQuery = z.object({
-	q: z.string().trim().max(200).catch(""),
-	show: z.enum(["all", ...logSubjects]).catch("all"),
-	page: z.coerce.number().int().min(1).max(1_000_000).catch(1),
-});
-export type LogQuery = z.infer<typeof LogQuery>;

@@ -113,7 +113,7 @@ export async function listBatch(trx: Trx, viewer: Associate, batchId: string): P
 function logDecision(
 	trx: Trx,
 	viewer: Associate,
-	{ findingId, stateFips, responseId, operationId }: Finding,
+	{ findingId, stateFips, surveyId, responseId, operationId }: Finding,
 	verb: Ending["outcome"] | "reopened" | "asked",
 ): Promise<void> {
 	return logEvent(trx, {
@@ -122,6 +122,6 @@ function logDecision(
 		subjectKind: "edit_finding",
 		subjectId: findingId,
 		stateFips,
-		detail: { responseId, operationId },
+		detail: { surveyId, responseId, operationId },
 	});
 }

@@ -48,6 +48,7 @@ export async function findAskedBy(trx: Trx, token: string) {
 		.where("o.status", "=", "active")
 		.select([
 			"q.edit_finding_id as findingId",
+			"r.survey_id as surveyId",
 			"r.response_id as responseId",
 			"r.state_fips as stateFips",
 			"r.language as responseLanguage",
@@ -67,7 +68,7 @@ export type Asked = NonNullable<Awaited<ReturnType<typeof findAskedBy>>>;
 /** Keeps what the grower said, once: a second tap, and a second person with the mail, change nothing. */
 export async function replyToQuestion(
 	trx: Trx,
-	{ findingId, responseId, operationId, stateFips }: Asked,
+	{ findingId, surveyId, responseId, operationId, stateFips }: Asked,
 	{ reply, words }: { reply: "right" | "wrong"; words: string },
 ): Promise<"kept" | "already"> {
 	const kept = await trx
@@ -85,7 +86,7 @@ export async function replyToQuestion(
 		subjectKind: "edit_finding",
 		subjectId: findingId,
 		stateFips,
-		detail: { responseId, operationId, byLink: true },
+		detail: { surveyId, responseId, operationId, byLink: true },
 	});
 	return "kept";
 }

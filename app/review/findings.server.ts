@@ -80,6 +80,7 @@ function selectFindings(trx: Trx, viewer: Associate, surveyId: string) {
 			.select([
 				"f.edit_finding_id as findingId",
 				"f.version",
+				"r.survey_id as surveyId",
 				"r.response_id as responseId",
 				"r.operation_id as operationId",
 				"o.state_fips as stateFips",

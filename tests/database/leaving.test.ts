@@ -3,7 +3,7 @@ import { createSession, RouterContextProvider } from "react-router";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { listEvents } from "#app/auth/event-list.server.ts";
 import { listPeople } from "#app/auth/grants.server.ts";
-import { LogQuery } from "#app/auth/log-actions.ts";
+import { LogQuery } from "#app/auth/log-query.ts";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import { sessionContext, type VisitorSession } from "#app/auth/session.server.ts";
 import type { Associate, Coordinator, Grower } from "#app/auth/viewer.ts";

@@ -1,107 +1,85 @@
 import { useTranslation } from "react-i18next";
+import { href } from "react-router";
 import type { Route } from "./+types/log";
+import { listLogChoices } from "#app/auth/event-filter.server.ts";
 import { type LoggedEvent, listEvents } from "#app/auth/event-list.server.ts";
 import { requireCoordinator } from "#app/auth/guard.server.ts";
-import { LogQuery, logSubjects } from "#app/auth/log-actions.ts";
-import { ChoiceField } from "#app/components/choice-field.tsx";
+import { logFilters, LogQuery } from "#app/auth/log-query.ts";
+import { readNetworkClock } from "#app/auth/network-clock.server.ts";
+import { ButtonLink } from "#app/components/button.tsx";
 import { DataTable } from "#app/components/data-table.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { Page } from "#app/components/page.tsx";
-import { Paging } from "#app/components/paging.tsx";
-import { SearchBar } from "#app/components/search-bar.tsx";
-import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { eventWords } from "./parts/log/event-words.ts";
+import { LogFilters } from "./parts/log/log-filters.tsx";
+import { LogPaging } from "./parts/log/log-paging.tsx";
 
 export async function loader({ context, request }: Route.LoaderArgs) {
 	const network = requireCoordinator(context);
 	const query = LogQuery.parse(Object.fromEntries(new URL(request.url).searchParams));
-	return { ...(await network.transaction((trx) => listEvents(trx, network.viewer, query))), query };
+	return network.transaction(async (trx) => ({
+		...(await listEvents(trx, network.viewer, query)),
+		...(await listLogChoices(trx, network.viewer)),
+		timeZone: (await readNetworkClock(trx)).timeZone,
+		query,
+	}));
 }
 
 /** Who did what, newest first; never what a grower answered. */
 export default function Log({ loaderData }: Route.ComponentProps) {
-	const { rows, total, page, pageCount, query } = loaderData;
-	const { t } = useTranslation("network");
+	const { rows, people, surveys, timeZone, query, ...page } = loaderData;
+	const { t, i18n } = useTranslation("network");
 	const format = useFormat();
+	const said = (event: LoggedEvent) => eventWords(event, { t, format, language: i18n.language, timeZone });
+	const filters = logFilters(query);
 	return (
-		<Page title={t("log.title")} lead={t("log.lead")}>
-			<SearchBar label={t("log.search")} defaultValue={query.q}>
-				<ChoiceField
-					kind="select"
-					name="show"
-					legend={t("log.show")}
-					defaultValue={query.show}
-					options={(["all", ...logSubjects] as const).map((subject) => ({
-						value: subject,
-						label: t(`log.filter.${subject}`),
-					}))}
-				/>
-			</SearchBar>
+		<Page
+			title={t("log.title")}
+			lead={t("log.lead")}
+			actions={
+				<ButtonLink to={`${href("/network/log.csv")}?${filters}`} kind="secondary" reloadDocument>
+					{t("log.download")}
+				</ButtonLink>
+			}
+		>
+			<LogFilters key={filters.toString()} query={query} people={people} surveys={surveys} />
 			<DataTable
 				caption={t("log.title")}
 				captionHidden
 				rows={rows}
 				rowKey={(event) => String(event.eventId)}
 				columns={[
-					{ key: "when", header: t("log.when"), cell: (event) => format.moment(event.happenedAt) },
-					{ key: "who", header: t("log.who"), cell: (event) => <Who event={event} /> },
-					{ key: "what", header: t("log.what"), cell: (event) => <What action={event.action} /> },
-					{ key: "about", header: t("log.about"), cell: (event) => <About event={event} /> },
+					{ key: "when", header: t("log.when"), cell: (event) => format.moment(event.happenedAt, timeZone) },
+					{
+						key: "who",
+						header: t("log.who"),
+						cell: (event) => <Who who={said(event).who} nobody={said(event).nobody} email={event.person?.email} />,
+					},
+					{ key: "what", header: t("log.what"), cell: (event) => said(event).what },
+					{ key: "about", header: t("log.about"), cell: (event) => <Lines lines={said(event).about} /> },
 				]}
 				empty={<EmptyState title={t("log.emptyTitle")}>{t("log.emptyBody")}</EmptyState>}
 			/>
-			<Paging page={page} pageCount={pageCount} total={total} />
+			<LogPaging {...page} query={query} />
 		</Page>
 	);
 }
 
-function Who({ event: { person, told, action } }: { event: LoggedEvent }) {
-	const { t } = useTranslation("network");
-	// Whoever leaves is not named, not even in the log of it.
-	if (!person && (action === "operation.left" || action === "response.withdrawn")) return t("log.forgotten");
-	if (!person) return <span className="text-quiet">{t(told.byLink ? "log.byLink" : "log.nobody")}</span>;
+function Who({ who, nobody, email }: { who: string; nobody: boolean; email: string | null | undefined }) {
+	if (nobody) return <span className="text-quiet">{who}</span>;
 	return (
 		<>
-			{person.name || t("log.forgotten")}
-			<span className="block text-xs text-quiet">{person.email}</span>
+			{who}
+			<span className="block text-xs text-quiet">{email}</span>
 		</>
 	);
 }
 
-function What({ action }: { action: string }) {
-	const { t } = useTranslation("network");
-	const [subject, verb] = action.split(".");
-	// A row that an earlier version of the product wrote may have no words any more.
-	return t(`log.action.${subject}.${verb}`, { defaultValue: action });
-}
-
-/** Whom or what it was about, a line each. Growers are told by state: who answered is the desk's to see. */
-function About({ event }: { event: LoggedEvent }) {
-	const { t, i18n } = useTranslation("network");
-	const format = useFormat();
-	const { about, person, survey, stateFips, told, action } = event;
-	const state = stateFips && t(`common:state.${stateFips}`);
-	const role = told.role && t(`common:role.${told.role}`);
-	const ofGrower = /^(response|operation)\./.test(action) || action === "survey.link_replaced";
-	const lines = [
-		about !== person?.name && about !== "" && about,
-		role && (state ? t("people.roleIn", { role, state }) : role),
-		survey && t("log.survey", { title: wordsIn(survey.title, i18n.language), season: survey.season }),
-		ofGrower && state && t("log.grower", { state }),
-		told.number !== undefined && t("log.release", { number: told.number }),
-		told.slug,
-		told.operations !== undefined && t("log.operations", count(told.operations)),
-		told.queued !== undefined && t("log.queued", count(told.queued)),
-		told.growers !== undefined && t("log.growers", count(told.growers)),
-		told.to && t("log.to", { moment: format.moment(told.to) }),
-	].filter((line) => typeof line === "string");
+function Lines({ lines }: { lines: string[] }) {
 	return lines.map((line) => (
 		<span key={line} className="block">
 			{line}
 		</span>
 	));
-
-	function count(value: number) {
-		return { count: value, value: format.number(value) };
-	}
 }
