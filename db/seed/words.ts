@@ -97,10 +97,10 @@ export const otherCauseWords = {
 export const reportWords: Record<number, { en: string; es: string }> = {
 	2024: {
 		en: "Growers describe an ordinary season. Among the causes they name for what was lost, none stands out.",
-		es: "Los productores describen una temporada común. Entre las causas que nombran para lo que se perdió, ninguna sobresale.",
+		es: "Los productores describen una temporada común. Entre las causas de pérdida que mencionan, ninguna sobresale.",
 	},
 	2025: {
-		en: "A hard freeze in late April met most orchards between central Iowa and southern Wisconsin in bloom. Farther north growers tell of an ordinary year. What was left to pick ripened some days late.",
-		es: "Una fuerte helada a fines de abril encontró en flor a la mayoría de los huertos entre el centro de Iowa y el sur de Wisconsin. Más al norte los productores hablan de un año común. Lo que quedó por cosechar maduró unos días más tarde.",
+		en: "A hard freeze in late April met most orchards between central Iowa and southern Wisconsin in bloom. Farther north, growers describe an ordinary year. What was left to pick ripened a few days late.",
+		es: "Una fuerte helada a fines de abril encontró en flor a la mayoría de las huertas entre el centro de Iowa y el sur de Wisconsin. Más al norte los productores hablan de un año común. Lo que quedó por cosechar maduró unos días más tarde.",
 	},
 };

@@ -22,7 +22,7 @@ const night: Screen = {
 			unitFamily: "temperature",
 			text: {
 				en: "What was the lowest temperature in your orchard?",
-				es: "¿Cuál fue la temperatura más baja en su huerto?",
+				es: "¿Cuál fue la temperatura más baja en su huerta?",
 			},
 			label: { en: "The lowest temperature", es: "La temperatura más baja" },
 			help: {
@@ -37,8 +37,8 @@ const night: Screen = {
 			key: "hours_below",
 			type: "number",
 			unitFamily: "count",
-			text: { en: "For how many hours was it below freezing?", es: "¿Cuántas horas estuvo bajo cero?" },
-			label: { en: "Hours below freezing", es: "Horas bajo cero" },
+			text: { en: "For how many hours was it below freezing?", es: "¿Cuántas horas duró la helada?" },
+			label: { en: "Hours below freezing", es: "Horas de helada" },
 			help: {
 				en: "Below 32 °F (0 °C), in that night. Whole hours are fine.",
 				es: "Por debajo de 32 °F (0 °C), en esa noche. Bastan horas enteras.",
@@ -54,7 +54,7 @@ const night: Screen = {
 			kind: "soft",
 			when: { compare: ">", question: "coldest", to: { value: 32 } },
 			question: "coldest",
-			message: { en: "That is above freezing.", es: "Eso está por encima de cero." },
+			message: { en: "That is above freezing.", es: "A esa temperatura no hiela." },
 		},
 		{
 			key: "frost_without_hours",
@@ -67,8 +67,8 @@ const night: Screen = {
 			},
 			question: "hours_below",
 			message: {
-				en: "It froze, and you told of no hour below freezing.",
-				es: "Heló, y usted no indicó ninguna hora bajo cero.",
+				en: "It froze, but you gave no hours below freezing.",
+				es: "Heló, pero usted no indicó ninguna hora de helada.",
 			},
 		},
 	],
@@ -96,7 +96,7 @@ const protection: Screen = {
 			options: [
 				{ key: "water", text: { en: "Ran water or sprinklers", es: "Regué con agua o aspersores" } },
 				{ key: "fans", text: { en: "Ran fans or wind machines", es: "Usé ventiladores o máquinas de viento" } },
-				{ key: "heat", text: { en: "Heated or lit fires", es: "Usé calentadores o fogatas" } },
+				{ key: "heat", text: { en: "Ran heaters or lit fires", es: "Usé calentadores o fogatas" } },
 				{ key: "covers", text: { en: "Covered the plants", es: "Cubrí las plantas" } },
 				{ key: "other", text: { en: "Something else", es: "Otra cosa" } },
 				{ key: "none", text: { en: "Nothing", es: "Nada" }, alone: true },
@@ -113,7 +113,7 @@ const buds: Screen = {
 		{
 			key: "stage",
 			type: "choice",
-			text: { en: "How far were they on that night?", es: "¿En qué etapa estaban esa noche?" },
+			text: { en: "How far along were they that night?", es: "¿En qué etapa estaban esa noche?" },
 			label: { en: "Growth stage", es: "Etapa" },
 			required: true,
 			sensitive: false,
@@ -146,7 +146,7 @@ const buds: Screen = {
 			type: "number",
 			unitFamily: "count",
 			text: { en: "How many of these were dead?", es: "¿Cuántas de ellas estaban muertas?" },
-			label: { en: "Dead ones among them", es: "Muertas entre ellas" },
+			label: { en: "Dead ones among those", es: "Muertas entre ellas" },
 			help: { en: "Brown or black inside.", es: "Cafés o negras por dentro." },
 			required: true,
 			condition: { compare: ">", question: "buds_cut", to: { value: 0 } },

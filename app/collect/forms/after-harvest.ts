@@ -36,7 +36,7 @@ const plantingChecks: Screen["checks"] = [
 		},
 		question: "normal_crop",
 		message: {
-			en: "That makes more than 1,000 lb from each tree or bush. Check the number and its unit.",
+			en: "That is more than 1,000 lb from each tree or bush. Check the number and its unit.",
 			es: "Eso da más de 1,000 lb por árbol o arbusto. Revise el número y su unidad.",
 		},
 	},
@@ -46,7 +46,7 @@ const plantingChecks: Screen["checks"] = [
 		when: { compare: "<", question: "normal_crop", to: { question: "bearing_trees", times: 0.1 } },
 		question: "normal_crop",
 		message: {
-			en: "That makes next to nothing from each tree or bush in a normal year. Check the number and its unit.",
+			en: "That is next to nothing from each tree or bush in a normal year. Check the number and its unit.",
 			es: "Eso da casi nada por árbol o arbusto en un año normal. Revise el número y su unidad.",
 		},
 	},
@@ -61,8 +61,8 @@ const plantingChecks: Screen["checks"] = [
 		},
 		question: "harvested",
 		message: {
-			en: "You picked fruit, and no tree or bush was old enough to bear.",
-			es: "Usted cosechó fruta, y ninguna planta estaba en edad de producir.",
+			en: "You picked fruit, but no tree or bush was old enough to bear.",
+			es: "Usted cosechó fruta, pero ninguna planta estaba en edad de producir.",
 		},
 	},
 ];
@@ -129,8 +129,8 @@ export const afterHarvest: FormDefinition = {
 			key: "causes",
 			title: { en: "What took the fruit", es: "Qué causó la pérdida" },
 			help: {
-				en: "Of all that was lost, what share went to each? The shares add up to 100.",
-				es: "De todo lo que se perdió, ¿qué parte se debió a cada causa? Las partes suman 100.",
+				en: "Of all that was lost, what percent went to each? The shares must add up to 100.",
+				es: "De todo lo que se perdió, ¿qué porcentaje se debió a cada causa? Los porcentajes deben sumar 100.",
 			},
 			perPlanting: false,
 			condition: { any_planting: { compare: "<", question: "harvested", to: { question: "normal_crop" } } },
@@ -168,7 +168,7 @@ export const afterHarvest: FormDefinition = {
 		},
 		{
 			key: "next_year",
-			title: { en: "Looking to next year", es: "Con vistas al próximo año" },
+			title: { en: "Looking to next year", es: "Para el próximo año" },
 			perPlanting: false,
 			questions: [
 				{
@@ -189,10 +189,10 @@ export const afterHarvest: FormDefinition = {
 					key: "other_cause",
 					type: "short_text",
 					text: {
-						en: "You told of something else that took fruit. What was it?",
-						es: "Usted contó que otra causa se llevó fruta. ¿Cuál fue?",
+						en: "You said that something else took fruit. What was it?",
+						es: "Usted indicó que hubo otra causa de pérdida. ¿Cuál fue?",
 					},
-					label: { en: "What else took fruit", es: "Qué otra causa se llevó fruta" },
+					label: { en: "What else took fruit", es: "Qué otra causa hubo" },
 					required: false,
 					maxLength: 200,
 					sensitive: false,

@@ -13,7 +13,7 @@ export const bloomWatch: FormDefinition = {
 			key: "bloom",
 			title: { en: "Bloom of your planting", es: "Floración de su plantación" },
 			help: {
-				en: "A day that is near is good enough. Leave out what has not come yet.",
+				en: "An approximate day is good enough. Leave out what has not come yet.",
 				es: "Basta con un día aproximado. Deje en blanco lo que todavía no ha llegado.",
 			},
 			perPlanting: true,
@@ -22,10 +22,10 @@ export const bloomWatch: FormDefinition = {
 					key: "bloom_density",
 					type: "rating",
 					text: {
-						en: "How much did it bloom, beside a normal year?",
+						en: "How much did it bloom, compared with a normal year?",
 						es: "¿Cuánto floreció, comparado con un año normal?",
 					},
-					label: { en: "Bloom beside a normal year", es: "Floración comparada con un año normal" },
+					label: { en: "Bloom compared with a normal year", es: "Floración comparada con un año normal" },
 					required: true,
 					sensitive: false,
 					// Scored as the share of the planting's trees that bloomed less than normal: all of them or none.
@@ -150,7 +150,7 @@ export const bloomWatch: FormDefinition = {
 			label: { en: "Operations with poor weather for bees", es: "Fincas con mal tiempo para las abejas" },
 			description: {
 				en: "Share of operations with bloom where it was mostly too cold, wet or windy for bees.",
-				es: "Parte de las fincas con flor donde casi siempre hizo demasiado frío, lluvia o viento para las abejas.",
+				es: "Parte de las fincas con flor donde casi siempre hubo demasiado frío, lluvia o viento para las abejas.",
 			},
 			unit: "percent",
 			decimals: 0,

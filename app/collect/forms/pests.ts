@@ -21,8 +21,8 @@ const seen: Screen = {
 			},
 			label: { en: "What you saw", es: "Lo que vio" },
 			help: {
-				en: "Before you spray: the label is the law, some products need a licence, and the advice of your local extension office comes first.",
-				es: "Antes de fumigar: la etiqueta es ley, algunos productos exigen licencia, y primero está el consejo de su oficina local de extensión.",
+				en: "Before you spray, read the label: it is the law. Some products need a license. The advice of your local extension office comes first.",
+				es: "Antes de fumigar, lea la etiqueta: es la ley. Algunos productos exigen licencia. Primero está el consejo de su oficina local de extensión.",
 			},
 			required: true,
 			sensitive: false,
@@ -70,10 +70,10 @@ function pestScreen(pest: Pest): Screen {
 				key: `${key}_trees`,
 				type: "percent",
 				text: {
-					en: "Of the trees or bushes here, what share had it?",
-					es: "De los árboles o arbustos de aquí, ¿qué parte la tenía?",
+					en: "Of the trees or bushes in this planting, what share had it?",
+					es: "De los árboles o arbustos de esta plantación, ¿qué parte estaba afectada?",
 				},
-				label: { en: "Share that had it", es: "Parte que la tenía" },
+				label: { en: "Share that had it", es: "Parte afectada" },
 				help: { en: "Your best estimate is fine.", es: "Basta con su mejor cálculo." },
 				required: true,
 				sensitive: false,
@@ -81,14 +81,14 @@ function pestScreen(pest: Pest): Screen {
 			{
 				key: `${key}_severity`,
 				type: "rating",
-				text: { en: "How bad was it on those?", es: "¿Qué tan grave fue en esos?" },
+				text: { en: "How bad was it on those?", es: "¿Qué tan grave fue en los afectados?" },
 				label: { en: "How bad it was", es: "Qué tan grave fue" },
 				required: true,
 				sensitive: false,
 				options: [
 					{
 						key: "light",
-						text: { en: "Light: a few spots, bites or shoots", es: "Leve: unas pocas manchas, mordidas o brotes" },
+						text: { en: "Light: a few spots, bites or shoots", es: "Leve: unas pocas manchas, mordeduras o brotes" },
 						score: 1,
 					},
 					{ key: "moderate", text: { en: "Moderate: easy to find", es: "Moderado: fácil de encontrar" }, score: 2 },
@@ -105,7 +105,7 @@ function pestScreen(pest: Pest): Screen {
 				text: { en: "Did it mark or spoil the fruit?", es: "¿Marcó o echó a perder la fruta?" },
 				label: { en: "What it did to the fruit", es: "Lo que le hizo a la fruta" },
 				help: {
-					en: "Rotten fruit, and fruit from the ground, can make people ill: ask your extension office before you sell or press any.",
+					en: "Rotten fruit, and fruit from the ground, can make people sick: ask your extension office before you sell or press any.",
 					es: "La fruta podrida o recogida del suelo puede enfermar a la gente: consulte a su oficina de extensión antes de venderla o exprimirla.",
 				},
 				required: true,
@@ -124,8 +124,8 @@ function pestScreen(pest: Pest): Screen {
 				when: { compare: "=", question: `${key}_trees`, to: { value: 0 } },
 				question: `${key}_trees`,
 				message: {
-					en: "You saw it in this planting, and told that no tree or bush had it.",
-					es: "Usted la vio en esta plantación, y dijo que ningún árbol o arbusto la tenía.",
+					en: "You said that you saw it in this planting, but that no tree or bush had it.",
+					es: "Usted dijo que lo vio en esta plantación, pero que ningún árbol o arbusto estaba afectado.",
 				},
 			},
 		],
@@ -144,10 +144,10 @@ function measuresOf(pest: Pest): Measure[] {
 		{
 			...share,
 			key: `${key}_seen`,
-			label: told("operations that saw it", "fincas que la vieron"),
+			label: told("operations that saw it", "fincas donde se vio"),
 			description: {
 				en: "Share of operations with the crop that saw it in at least one planting.",
-				es: "Parte de las fincas con el cultivo que la vieron en al menos una plantación.",
+				es: "Parte de las fincas con el cultivo donde se vio en al menos una plantación.",
 			},
 			numerator: { indicator: { any_planting: isSeen(pest) } },
 			denominator: { one: true },
@@ -155,10 +155,10 @@ function measuresOf(pest: Pest): Measure[] {
 		{
 			...share,
 			key: `${key}_trees`,
-			label: told("trees or bushes that had it", "árboles o arbustos que la tenían"),
+			label: told("trees or bushes that had it", "árboles o arbustos afectados"),
 			description: {
 				en: "Share of bearing trees or bushes that had it; none where it was not seen.",
-				es: "Parte de los árboles o arbustos en producción que la tenían; ninguno donde no se vio.",
+				es: "Parte de los árboles o arbustos en producción que estaban afectados; ninguno donde no se vio.",
 			},
 			numerator: { terms: [{ known: "bearing_trees", times: 1, share: `${key}_trees` }] },
 			denominator: knownTrees,
@@ -182,7 +182,7 @@ function measuresOf(pest: Pest): Measure[] {
 		{
 			...share,
 			key: `${key}_fruit`,
-			label: told("operations with hurt fruit", "fincas con fruta dañada"),
+			label: told("operations with damaged fruit", "fincas con fruta dañada"),
 			description: {
 				en: "Share of operations with the crop where it marked or spoiled fruit in at least one planting.",
 				es: "Parte de las fincas con el cultivo donde marcó o echó a perder fruta en al menos una plantación.",

@@ -86,9 +86,9 @@ test("each crop has pests of its own to tell of, and each pest is asked about wh
 
 test("where spraying, spoiled fruit or cold nights are spoken of, a caution stands beside", () => {
 	expect(helpOf(readyForms.pests, "seen")).toMatchObject({
-		en: expect.stringMatching(/label.*licence.*local extension/),
+		en: expect.stringMatching(/label.*license.*local extension/),
 		es: expect.stringMatching(/etiqueta.*licencia.*extensión/),
 	});
-	expect(helpOf(readyForms.pests, "scab_fruit")?.en).toContain("make people ill");
+	expect(helpOf(readyForms.pests, "scab_fruit")?.en).toContain("make people sick");
 	expect(helpOf(readyForms.after_freeze, "protection")?.en).toMatch(/hurt people.*extension office/);
 });
