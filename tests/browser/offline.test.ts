@@ -160,7 +160,7 @@ test("a phone without room says what that means, and a full one does not lose wh
 	});
 	await page.reload();
 	await page.fill("[name=harvested]", "110");
-	await word(page).getByText("This phone gives no room to keep them", { exact: false }).waitFor();
+	await word(page).getByText("This phone has no room left to keep your answers", { exact: false }).waitFor();
 	expect(await heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 110 });
 	await page.context().setOffline(true);
 	await page.fill("[name=harvested]", "111");

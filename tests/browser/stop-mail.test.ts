@@ -108,7 +108,7 @@ test("mail is stopped, and comes again, by keyboard and without scripts", async 
 			await page.keyboard.press("Tab");
 		await page.keyboard.press("Enter");
 	};
-	await press("Stop these mails");
+	await press("Stop these e-mails");
 	await page.getByRole("heading", { level: 1, name: /is stopped/ }).waitFor();
 	expect(await isWanted(operationId)).toBe(false);
 	// The name in part: whoever was sent the mail on learns no more.
