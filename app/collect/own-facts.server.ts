@@ -63,8 +63,23 @@ async function listFigures(trx: Trx, surveyId: string, operationId: string, meas
 		);
 }
 
+/** The crops of which an operation told something that counts in a survey's figures. */
+export async function listToldCrops(trx: Trx, surveyId: string, operationId: string): Promise<string[]> {
+	const rows = await trx
+		.selectFrom("collect.fact")
+		.select("crop_key")
+		.distinct()
+		.where("survey_id", "=", surveyId)
+		.where("operation_id", "=", operationId)
+		.where("crop_key", "!=", "all")
+		.where("y", "is not", null)
+		.orderBy("crop_key")
+		.execute();
+	return rows.map(({ crop_key }) => crop_key);
+}
+
 /** The newest edition of the survey's figures. */
-async function findReleaseId(trx: Trx, surveyId: string): Promise<string | null> {
+export async function findReleaseId(trx: Trx, surveyId: string): Promise<string | null> {
 	const draft = await trx
 		.selectFrom("collect.release_draft")
 		.select("release_id")

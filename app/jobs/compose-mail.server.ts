@@ -7,6 +7,7 @@ import { stopAddressOf } from "#app/mail/stop-token.server.ts";
 import { writeLetter } from "#app/mail/templates.ts";
 import { messageIdOf, type OutgoingMail, senderName } from "#app/mail/transport.server.ts";
 import { mailWords } from "#app/mail/words.server.ts";
+import { besideSentence } from "./beside-sentence.server.ts";
 import { composeQuestion } from "./compose-question.server.ts";
 
 /**
@@ -20,6 +21,8 @@ export async function composeMail(mailing: Mailing, link: string | null): Promis
 	const t = await mailWords(language);
 	// A receipt was asked for by sending in: it is no mail that one stops.
 	const stopAddress = mailing.kind === "receipt" ? null : stopAddressOf(mailing.operation_id);
+	const format = formatterFor(language, t);
+	const isThanks = mailing.kind === "thank_you";
 	const letter = writeLetter(
 		{
 			kind: mailing.kind,
@@ -32,13 +35,14 @@ export async function composeMail(mailing: Mailing, link: string | null): Promis
 			minutes: mailing.minutes,
 			closesAt: mailing.closes_at,
 			timeZone: mailing.time_zone,
-			link: mailing.kind === "thank_you" ? `${env().BASE_URL}/orchard/compare/${mailing.survey_id}` : link,
+			link: isThanks ? `${env().BASE_URL}/orchard/compare/${mailing.survey_id}` : link,
 			mapLink: `${env().BASE_URL}/map${mailing.county_fips && `?area=${mailing.county_fips}`}`,
+			beside: isThanks ? await besideSentence(mailing, { language, t, format }) : null,
 			stopAddress,
 			receipt: receiptOf(mailing),
 		},
 		t,
-		formatterFor(language, t),
+		format,
 	);
 	return {
 		to: { name: mailing.contact_name, address: mailing.email ?? "" },

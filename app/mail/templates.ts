@@ -21,6 +21,8 @@ export type LetterFields = {
 	link: string | null;
 	/** The published map at the operation's county. */
 	mapLink: string;
+	/** A published figure around the operation, for a thank-you; null where none is shown. */
+	beside: string | null;
 	/** Where mail of this kind is stopped; null where it was asked for. */
 	stopAddress: string | null;
 	/** `isLate` when the answers came after the closing. */
@@ -36,7 +38,14 @@ export function writeLetter(fields: LetterFields, t: TFunction, format: Formatte
 	const greeting = fields.contactName ? t("mail:greeting", values) : t("mail:greeting_unnamed");
 	const body: Paragraph[] =
 		kind === "thank_you"
-			? [say("what"), ...button, say("sign_in"), { link: mapLink, label: t("mail:thank_you.map") }, say("help")]
+			? [
+					say("what"),
+					...(fields.beside ? [fields.beside] : []),
+					...button,
+					say("sign_in"),
+					{ link: mapLink, label: t("mail:thank_you.map") },
+					say("help"),
+				]
 			: [say("what"), ...button, say(fields.receipt?.isLate ? "late" : "until"), say("pledge"), say("help")];
 	return {
 		language: fields.language,

@@ -2,6 +2,9 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { findOwnFacts } from "#app/collect/own-facts.server.ts";
+import { besideSentence } from "#app/jobs/beside-sentence.server.ts";
+import { formatterFor } from "#app/lib/format.ts";
+import { mailWords } from "#app/mail/words.server.ts";
 import { comparisonKey, findComparison } from "#app/publish/comparison.server.ts";
 import { createTestDatabase, type TestDatabase } from "#tests/helpers/database.ts";
 import { asGrower, askGrower, growerOf, linkOf } from "./answering-fixture.ts";
@@ -93,4 +96,26 @@ test("another grower finds nothing, nor does whoever came by a link", async () =
 	const liar = growerOf(place.operationId);
 	expect(await asGrower(other, (trx) => findOwnFacts(trx, liar, place.surveyId))).toBeUndefined();
 	expect(await count(owner, "collect.fact where operation_id = $1", [place.operationId])).toBe(2);
+});
+
+test("the thank-you says in one sentence how the grower's crop went around them, and nothing of their own answers", async () => {
+	const { place } = await answered();
+	const mailing = { survey_id: place.surveyId, operation_id: place.operationId, county_fips: "19113" };
+	const say = async (language: "en" | "es", more = {}) => {
+		const t = await mailWords(language);
+		return besideSentence({ ...mailing, ...more }, { language, t, format: formatterFor(language, t) });
+	};
+	expect(await say("en")).toBeNull();
+	await owner.query(
+		`insert into collect.release_draft (survey_id, rules, drafted_by, status, audit, release_id)
+		values ($1, '{}', $2, 'approved', '{"passed": true}', $3)`,
+		[place.surveyId, iowa.personId, releaseId],
+	);
+	// The county is withheld: what stands there is its district's. The grower told of a loss of 25%.
+	expect(await say("en")).toBe(
+		"Around you, in East Iowa, growers lost 52% of a normal crop of apples, likely between 44 and 60%.",
+	);
+	expect(await say("es")).toContain("se perdió el 52% de una cosecha normal de la manzana");
+	expect(await say("en", { county_fips: "19103" })).toContain("in Johnson County, Iowa, growers lost 38%");
+	expect(await say("en", { county_fips: "55025" })).toBeNull();
 });

@@ -1,5 +1,6 @@
 import { useTranslation } from "react-i18next";
 import type { OwnFacts, OwnFigure } from "#app/collect/own-facts.server.ts";
+import { BesideChart } from "#app/components/chart/beside-chart.tsx";
 import { Figure } from "#app/components/figure.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useAreaName } from "#app/components/map/area-name.ts";
@@ -7,6 +8,7 @@ import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { Comparison } from "#app/publish/comparison.server.ts";
 import type { ReleaseMeasure } from "#app/publish/release.ts";
+import { useBesideWords } from "./beside-words.ts";
 
 type Beside = OwnFacts & Pick<Comparison, "measures" | "cells">;
 type Cell = Comparison["cells"][string];
@@ -43,20 +45,35 @@ function Pair({ own, measure, cell }: { own: OwnFigure; measure: ReleaseMeasure;
 	const { t } = useTranslation("orchard");
 	const format = useFormat();
 	const nameOf = useAreaName();
+	const besideWords = useBesideWords();
+	const sentence = cell && besideWords({ own, measure, cell });
 	return (
-		<dl className="mt-1 grid gap-x-8 gap-y-2 sm:grid-cols-2">
-			<div>
-				<dt className="text-base text-quiet">{t("compare.you")}</dt>
-				<dd className="font-bold">
-					{own.kind === "proportion"
-						? t(own.value > 0 ? "compare.yes" : "compare.no")
-						: format.figure(own.value, measure)}
-				</dd>
-			</div>
-			<div>
-				<dt className="text-base text-quiet">{cell ? nameOf(cell) : t("compare.around")}</dt>
-				<dd>{cell ? <Figure {...cell} measure={measure} /> : t("compare.noneShown")}</dd>
-			</div>
-		</dl>
+		<>
+			{sentence && <p className="mt-1 font-bold">{sentence}</p>}
+			{cell && sentence && own.kind !== "proportion" && (
+				<div className="mt-2">
+					<BesideChart
+						own={{ label: t("compare.you"), value: own.value }}
+						area={{ label: nameOf(cell), cell }}
+						measure={measure}
+						alternative={sentence}
+					/>
+				</div>
+			)}
+			<dl className="mt-2 grid gap-x-8 gap-y-2 sm:grid-cols-2">
+				<div>
+					<dt className="text-base text-quiet">{t("compare.you")}</dt>
+					<dd className="font-bold">
+						{own.kind === "proportion"
+							? t(own.value > 0 ? "compare.yes" : "compare.no")
+							: format.figure(own.value, measure)}
+					</dd>
+				</div>
+				<div>
+					<dt className="text-base text-quiet">{cell ? nameOf(cell) : t("compare.around")}</dt>
+					<dd>{cell ? <Figure {...cell} measure={measure} /> : t("compare.noneShown")}</dd>
+				</div>
+			</dl>
+		</>
 	);
 }
