@@ -1,5 +1,7 @@
 import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
+import { listCounties } from "#app/lib/geography/counties.ts";
+import { usTopology } from "#app/lib/geography/topology.server.ts";
 import { listCells } from "#app/publish/cells.server.ts";
 import { findMapFigures } from "#app/publish/figures.server.ts";
 import { findRelease, listCrops, listReleases } from "#app/publish/releases.server.ts";
@@ -107,6 +109,13 @@ test("outlines may be kept for ever under the address that names their version, 
 	// Iowa has 99 counties (Census Bureau, county code list); ids are numbers, as the map library needs.
 	expect(counties.features).toHaveLength(99);
 	expect(counties.features.every(({ id }) => Number.isInteger(id) && Math.floor(id / 1000) === 19)).toBe(true);
+});
+
+test("a network of every state has its outlines", async () => {
+	const every = [...new Set(listCounties(usTopology()).map(({ stateFips }) => stateFips))];
+	expect(every.length).toBeGreaterThan(50);
+	const answer = await get(countiesLoader, `/map/counties.json?states=${every.join("-")}`);
+	expect(answer.status).toBe(200);
 });
 
 test.for(["", "?states=99", "?states=abc", "?states=19-", `?states=${"19-".repeat(400)}19`])(

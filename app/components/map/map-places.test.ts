@@ -2,7 +2,7 @@ import { expect, test } from "vitest";
 import { usTopology } from "#app/lib/geography/topology.server.ts";
 import { countyFeatures } from "#app/lib/geography/counties.ts";
 import { countyOfPin } from "#app/lib/geography/county-of-pin.server.ts";
-import { countyAt, nextCounty, type Place } from "./map-places.ts";
+import { countyAt, middlesOf, nextCounty, type Place } from "./map-places.ts";
 import { outerEdge, pathOfEdges, ringsOfPath } from "./outer-edge.ts";
 
 /** A chequerboard of nine places, row by row from the north. */
@@ -45,4 +45,19 @@ test("the map names the county of a place as the server finds it, and none outsi
 		}
 	}
 	expect(found).toBeGreaterThan(100);
+});
+
+test("arrow keys alone reach every county of four states from where the walk begins", () => {
+	const { features } = countyFeatures(usTopology(), ["17", "19", "27", "55"], 4);
+	const counties = features.map((county) => ({ ...county, properties: { fips: String(county.id) } }));
+	const places = middlesOf({ counties: { type: "FeatureCollection", features: counties } });
+	const reached = new Set<string>();
+	const next = [nextCounty(places, null, "up")!];
+	for (let here = next.shift(); here; here = next.shift()) {
+		if (reached.has(here)) continue;
+		reached.add(here);
+		next.push(...(["up", "down", "left", "right"] as const).map((way) => nextCounty(places, here!, way)!));
+	}
+	expect(places.length).toBeGreaterThan(300);
+	expect(places.filter(({ fips }) => !reached.has(fips))).toEqual([]);
 });

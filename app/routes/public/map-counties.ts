@@ -4,7 +4,7 @@ import { cachedJson, problem } from "#app/publish/cached-json.server.ts";
 import { countiesFile } from "#app/publish/geometry.server.ts";
 
 const Query = z.object({
-	states: z.string().regex(/^\d{2}(-\d{2}){0,11}$/, "states are two-digit codes joined by a hyphen"),
+	states: z.string().regex(/^\d{2}(-\d{2}){0,59}$/, "states are two-digit codes joined by a hyphen"),
 	version: z.string().max(40).optional(),
 });
 
