@@ -15,7 +15,10 @@ async function drawn(value: number, more: Partial<Operation> = {}, language = "e
 	const i18n = createInstance();
 	await i18n.init({ ...i18nextSettings, resources, lng: language });
 	const operation: Operation = {
-		...{ operationId: "1", name: "Plum Hollow", countyFips: "19113", measures: [measure] },
+		operationId: "1",
+		name: "Plum Hollow",
+		countyFips: "19113",
+		measures: [measure],
 		figures: [{ measureKey: "crop_loss", cropKey: "apple", kind: "ratio", value }],
 		cells: { "crop_loss|apple": cell },
 		...more,
