@@ -29,6 +29,7 @@ export default [
 		...prefix("dataroom", [
 			layout("routes/dataroom/layout.tsx", [
 				index("routes/dataroom/home.tsx"),
+				route("tables", "routes/dataroom/tables.tsx"),
 				route("keys", "routes/dataroom/keys.tsx"),
 				route("access", "routes/dataroom/access.tsx"),
 			]),
@@ -42,6 +43,7 @@ export default [
 	route("data/:release/:citation", "routes/public/cite.ts"),
 	route("map/figures/:release/:measure/:crop", "routes/public/map-figures.ts"),
 	route("dataroom/releases/:release/:file", "routes/dataroom/file.ts"),
+	route("dataroom/tables/:file", "routes/dataroom/table-file.ts"),
 
 	// Programs: JSON, CSV and files, with refusals of their own kind.
 	...prefix("api/v1", [

@@ -69,12 +69,12 @@ export function requestAccess(
 	});
 }
 
-/** Records that a file was taken, before it is given out. */
-export function recordDownload(person: Person, releaseId: string, fileKey: string): Promise<void> {
+/** Records that a file was taken, before it is given out: once for each release that has figures in it. */
+export function recordDownload(person: Person, releaseIds: string[], fileKey: string): Promise<void> {
 	return scopedTransaction({ kind: "none" }, async (trx) => {
 		await trx
 			.insertInto("log.download")
-			.values({ person_id: person.personId, release_id: releaseId, file_key: fileKey })
+			.values(releaseIds.map((release_id) => ({ person_id: person.personId, release_id, file_key: fileKey })))
 			.execute();
 	});
 }

@@ -40,3 +40,15 @@ export function partsOfLoss(whole: ReleaseMeasure, measures: ReleaseMeasure[]): 
 		({ key, kind, unit }) => key !== whole.key && key.endsWith("_loss") && kind === whole.kind && unit === whole.unit,
 	);
 }
+
+/** Numbers first, by size; then what has none, by name. "All crops" is no crop, and a crop of which nothing was asked is left out. */
+export function drawnOrder<C extends CropCell>(measure: ReleaseMeasure, cells: C[]): CropCell[] {
+	const numbered = worstFirst(measure, cells);
+	const rest = cells.filter(
+		(cell) =>
+			cell.cropKey !== "all" &&
+			!numbered.some(({ cropKey, areaKey }) => cropKey === cell.cropKey && areaKey === cell.areaKey) &&
+			(cell.status === "withheld" || cell.steadiness === "rough"),
+	);
+	return [...numbered, ...rest];
+}

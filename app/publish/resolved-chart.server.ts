@@ -1,6 +1,6 @@
 import type { Cell, CropCell } from "./cell.ts";
 import { addressKey, findCells, listCells, listCropCells } from "./cells.server.ts";
-import { partsOfLoss, worstFirst } from "./finding.ts";
+import { drawnOrder, partsOfLoss } from "./finding.ts";
 import type { ReleaseMeasure } from "./release.ts";
 import type { Block } from "./report.ts";
 import { findEarlier, type SeasonCell, type Source, told, type Told } from "./report-source.server.ts";
@@ -32,27 +32,15 @@ export async function resolveChart(block: ChartBlock, source: Source): Promise<R
 	const area = cells[0] && areaOf(cells[0]);
 	if (!area) return null;
 	if (block.chart === "windows") return windowsChart(block, area, cells, source);
-	const rows = inOrder(measure, cells);
+	const rows = drawnOrder(measure, cells);
 	if (rows.length === 0) return null;
 	if (block.chart === "crops") return { chart: "crops", measure: told(measure), worse: measure.worse, area, rows };
 	return causesChart(block, measure, area, rows, source);
 }
 
-/** Numbers first, by size; then what has none, by name. "All crops" is no crop, and a crop of which nothing was asked is left out. */
-function inOrder<C extends CropCell>(measure: ReleaseMeasure, cells: C[]): CropCell[] {
-	const numbered = worstFirst(measure, cells);
-	const rest = cells.filter(
-		(cell) =>
-			cell.cropKey !== "all" &&
-			!numbered.some(({ cropKey, areaKey }) => cropKey === cell.cropKey && areaKey === cell.areaKey) &&
-			(cell.status === "withheld" || cell.steadiness === "rough"),
-	);
-	return [...numbered, ...rest];
-}
-
 async function areasChart(block: ChartBlock, measure: ReleaseMeasure, source: Source): Promise<ResolvedChart | null> {
 	const cells = await listCells(source.release.releaseId, measure.key, block.crop, block.kind);
-	const rows = inOrder(
+	const rows = drawnOrder(
 		measure,
 		cells.map((cell) => ({ ...cell, cropKey: "" })),
 	);
@@ -90,7 +78,7 @@ async function windowsChart(
 		days.flatMap(({ key }) => crops.map((crop) => ({ measure: key, crop, area: block.area }))),
 	);
 	const at = (measure: string, crop: string) => found[addressKey({ measure, crop, area: block.area })] ?? null;
-	const ordered = inOrder(
+	const ordered = drawnOrder(
 		leading,
 		crops.flatMap((crop) => at(leading.key, crop) ?? []),
 	);

@@ -10,8 +10,15 @@ import { SeasonLine } from "./season-line.tsx";
 import { useFinding } from "./use-finding.ts";
 import { AreaDots, CropBars } from "./value-rows.tsx";
 
+type ChartProps = {
+	drawn: ResolvedChart;
+	season: number;
+	/** The page has a table of the same figures already. */
+	alone?: boolean;
+};
+
 /** A chart under a title that says what it shows, how to read it, and the same figures as a table. */
-export function Chart({ drawn, season }: { drawn: ResolvedChart; season: number }) {
+export function Chart({ drawn, season, alone }: ChartProps) {
 	const { t } = useTranslation("report");
 	const finding = useFinding()(drawn);
 	const subject = useSubject(drawn, season);
@@ -29,7 +36,7 @@ export function Chart({ drawn, season }: { drawn: ResolvedChart; season: number 
 					{t(`chart.read.${drawn.chart}`)} {isCareful(drawn) && t("chart.care")}
 				</p>
 			</div>
-			<ChartTable drawn={drawn} caption={subject} />
+			{!alone && <ChartTable drawn={drawn} caption={subject} />}
 		</figure>
 	);
 }

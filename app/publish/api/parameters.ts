@@ -1,10 +1,8 @@
 import { z } from "zod";
 import { areaKinds } from "../cell.ts";
 import { observationStatuses } from "../data-file.ts";
+import { mostRows, mostValues } from "./limits.ts";
 
-/** How many values one filter takes, and how many rows one page. */
-export const mostValues = 100;
-export const mostRows = 10_000;
 const usualRows = 1_000;
 
 /** Example of a value, for the reference page and for who sent something else. */

@@ -9,7 +9,7 @@ export type CodeTable = {
 	name: string;
 	columns: Column[];
 	key: string[];
-	codes: { column: string; table: string; key: string }[];
+	codes: { columns: string[]; table: string; keys: string[] }[];
 	rows: (string | number | null)[][];
 };
 
@@ -20,9 +20,10 @@ const text = (name: string, about: Column["about"], required = true): Column => 
 	about,
 });
 
-/** The cells and the three lists of codes that they use, each told in both languages. */
+/** The cells and the lists of codes that they use, each told in both languages; of a table also the releases. */
 export function packageTables(source: FileSource): CodeTable[] {
-	return [cellsTable(source), measuresTable(source), cropsTable(source), areasTable(source)];
+	const lists = [cellsTable(source), measuresTable(source), cropsTable(source), areasTable(source)];
+	return source.isTable ? [...lists, releasesTable(source)] : lists;
 }
 
 export const tableCsv = ({ columns, rows }: CodeTable): string =>
@@ -31,7 +32,7 @@ export const tableCsv = ({ columns, rows }: CodeTable): string =>
 		rows,
 	);
 
-function cellsTable({ records, words }: FileSource): CodeTable {
+function cellsTable({ records, words, isTable }: FileSource): CodeTable {
 	const column = (name: DataColumn): Column => ({
 		name,
 		type: columnType(name),
@@ -41,21 +42,34 @@ function cellsTable({ records, words }: FileSource): CodeTable {
 	return {
 		name: "cells",
 		columns: dataColumns.map(column),
-		key: ["measure", "crop", "area_code"],
+		key: [...ofRelease(isTable), "measure", "crop", "area_code"],
 		codes: [
-			{ column: "measure", table: "measures", key: "measure" },
-			{ column: "crop", table: "crops", key: "crop" },
-			{ column: "area_code", table: "areas", key: "area_code" },
+			sameColumns("measures", [...ofRelease(isTable), "measure"]),
+			sameColumns("crops", ["crop"]),
+			sameColumns("areas", [...ofRelease(isTable), "area_code"]),
+			...(isTable ? [sameColumns("releases", ["release"])] : []),
 		],
 		rows: records.map((record) => dataColumns.map((name) => record[name])),
 	};
 }
 
-function measuresTable({ measures, words }: FileSource): CodeTable {
+/** Each release of a table defines its own codes, so there the release belongs to their key. */
+const ofRelease = (isTable: boolean) => (isTable ? ["release"] : []);
+const sameColumns = (table: string, columns: string[]) => ({ columns, table, keys: columns });
+
+const releaseColumn = (words: FileSource["words"]): Column => ({
+	name: "release",
+	type: "integer",
+	required: true,
+	about: inBoth(words, "dataroom:column.release.about"),
+});
+
+function measuresTable({ parts, words, isTable }: FileSource): CodeTable {
 	const about = (name: string) => inBoth(words, `dataroom:codeColumn.${name}`);
 	return {
 		name: "measures",
 		columns: [
+			...(isTable ? [releaseColumn(words)] : []),
 			text("measure", inBoth(words, "dataroom:column.measure.about")),
 			text("name_en", about("nameEnglish")),
 			text("name_es", about("nameSpanish")),
@@ -65,18 +79,21 @@ function measuresTable({ measures, words }: FileSource): CodeTable {
 			text("unit", about("unit")),
 			{ name: "decimals", type: "integer", required: true, about: about("decimals") },
 		],
-		key: ["measure"],
+		key: [...ofRelease(isTable), "measure"],
 		codes: [],
-		rows: measures.map(({ key, label, description, kind, unit, decimals }) => [
-			key,
-			label.en,
-			label.es,
-			description.en,
-			description.es,
-			kind,
-			unit,
-			decimals,
-		]),
+		rows: parts.flatMap(({ release, measures }) =>
+			measures.map(({ key, label, description, kind, unit, decimals }) => [
+				...(isTable ? [release.number] : []),
+				key,
+				label.en,
+				label.es,
+				description.en,
+				description.es,
+				kind,
+				unit,
+				decimals,
+			]),
+		),
 	};
 }
 
@@ -94,18 +111,57 @@ function cropsTable({ crops, words }: FileSource): CodeTable {
 	};
 }
 
-function areasTable({ areas, words }: FileSource): CodeTable {
+function areasTable({ parts, words, isTable }: FileSource): CodeTable {
 	return {
 		name: "areas",
 		columns: [
+			...(isTable ? [releaseColumn(words)] : []),
 			text("area_code", inBoth(words, "dataroom:column.area_code.about")),
 			text("area_kind", inBoth(words, "dataroom:column.area_kind.about")),
 			text("area_name", inBoth(words, "dataroom:column.area_name.about")),
 			text("lies_in", inBoth(words, "dataroom:codeColumn.liesIn"), false),
 			text("state_code", inBoth(words, "dataroom:column.state_code.about"), false),
 		],
-		key: ["area_code"],
+		key: [...ofRelease(isTable), "area_code"],
 		codes: [],
-		rows: areas.map(({ key, kind, name, parentKey, stateFips }) => [key, kind, name, parentKey, stateFips]),
+		rows: parts.flatMap(({ release, areas }) =>
+			areas.map(({ key, kind, name, parentKey, stateFips }) => [
+				...(isTable ? [release.number] : []),
+				key,
+				kind,
+				name,
+				parentKey,
+				stateFips,
+			]),
+		),
+	};
+}
+
+function releasesTable({ parts, words }: FileSource): CodeTable {
+	const about = (name: string) => inBoth(words, `dataroom:codeColumn.${name}`);
+	return {
+		name: "releases",
+		columns: [
+			releaseColumn(words),
+			{ name: "season", type: "integer", required: true, about: inBoth(words, "dataroom:column.season.about") },
+			text("title_en", about("nameEnglish")),
+			text("title_es", about("nameSpanish")),
+			text("form", about("form")),
+			text("published_at", about("publishedAt")),
+			{ name: "edition", type: "integer", required: true, about: about("edition") },
+			text("code_version", about("codeVersion")),
+		],
+		key: ["release"],
+		codes: [],
+		rows: parts.map(({ release }) => [
+			release.number,
+			release.season,
+			release.title.en,
+			release.title.es,
+			release.formKey,
+			release.publishedAt,
+			release.edition,
+			release.codeVersion,
+		]),
 	};
 }

@@ -1,12 +1,15 @@
 import type { Language } from "#app/i18n/language.ts";
 import { dataColumns, observationStatuses, toCsv } from "../data-file.ts";
-import { type FileSource, inBoth } from "./release-file.ts";
+import type { Release } from "../release.ts";
+import { definitionsOf, distinctOf, type FileSource, inBoth } from "./release-file.ts";
 
 const steadiness = ["steady", "care", "rough"] as const;
 const header = ["part", "code", "name", "description", "unit"];
 
-/** What every column, measure and code of a release's files means, one row each, in one language, after a row of headings. */
-export function codebookRows({ measures, crops, words }: FileSource, language: Language): (string | null)[][] {
+/** What every column, measure and code of the files means, one row each, in one language, after a row of headings. */
+export function codebookRows(source: FileSource, language: Language): (string | null)[][] {
+	const { crops, words } = source;
+	const measures = distinctOf(source, definitionsOf).map(({ item }) => item);
 	const t = words[language];
 	return [
 		header,
@@ -51,44 +54,41 @@ export function codebookCsv(source: FileSource): string {
 	return toCsv(["language", ...header], [...rows("en"), ...rows("es")]);
 }
 
-/** The codebook for programs, with how the release was made: the rules it was protected by and who was asked. */
+/** The codebook for programs, with how each release was made: the rules it was protected by and who was asked. */
 export function codebookJson(source: FileSource): unknown {
-	const { release, measures, crops, areas, words, address } = source;
+	const { parts, isTable, crops, words, address } = source;
 	const told = (code: string, keyOf: (part: "name" | "about") => string) => ({
 		code,
 		name: inBoth(words, keyOf("name")),
 		about: inBoth(words, keyOf("about")),
 	});
-	return {
-		release: {
-			number: release.number,
-			address,
-			title: release.title,
-			season: release.season,
-			form: release.formKey,
-			published_at: release.publishedAt,
-			edition: release.edition,
-			revision_reason: release.revisionReason,
-			code_version: release.codeVersion,
-		},
+	/** Of a table each definition says which of its releases tell it so. */
+	const inReleases = (releases: number[]) => (isTable ? { releases } : {});
+	const releases = parts.map(({ release }) => ({
+		release: releaseOf(release, address, isTable),
 		method: release.method,
 		rules: release.rules,
+	}));
+	return {
+		...(isTable ? { table: { address }, releases } : releases[0]),
 		columns: dataColumns.map((column) => told(column, (part) => `dataroom:column.${column}.${part}`)),
-		measures: measures.map(({ key, label, description, kind, unit, decimals }) => ({
-			code: key,
-			name: label,
-			about: description,
-			kind,
-			unit: { code: unit, name: inBoth(words, `common:unitName.${unit}`) },
-			decimals,
+		measures: distinctOf(source, definitionsOf).map(({ item, releases: of }) => ({
+			...inReleases(of),
+			code: item.key,
+			name: item.label,
+			about: item.description,
+			kind: item.kind,
+			unit: { code: item.unit, name: inBoth(words, `common:unitName.${item.unit}`) },
+			decimals: item.decimals,
 		})),
 		crops: crops.map((crop) => ({ code: crop, name: inBoth(words, `common:crop.${crop}`) })),
-		areas: areas.map(({ key, kind, name, parentKey, stateFips }) => ({
-			code: key,
-			kind,
-			name,
-			lies_in: parentKey,
-			state_code: stateFips,
+		areas: distinctOf(source, ({ areas }) => areas).map(({ item, releases: of }) => ({
+			...inReleases(of),
+			code: item.key,
+			kind: item.kind,
+			name: item.name,
+			lies_in: item.parentKey,
+			state_code: item.stateFips,
 		})),
 		statuses: observationStatuses.map((code) => told(code, (part) => `dataroom:status.${code}.${part}`)),
 		steadiness: steadiness.map((code) => ({
@@ -96,5 +96,19 @@ export function codebookJson(source: FileSource): unknown {
 			name: inBoth(words, `common:steadiness.${code}`),
 			about: inBoth(words, `dataroom:steadiness.${code}`),
 		})),
+	};
+}
+
+function releaseOf(release: Release, address: string, isTable: boolean) {
+	return {
+		number: release.number,
+		...(!isTable && { address }),
+		title: release.title,
+		season: release.season,
+		form: release.formKey,
+		published_at: release.publishedAt,
+		edition: release.edition,
+		revision_reason: release.revisionReason,
+		code_version: release.codeVersion,
 	};
 }

@@ -16,17 +16,17 @@ const inLanguages = ({ en, es }: { en: string; es: string }) => [
 ];
 
 /**
- * What the CSV files of a release hold, after W3C's Metadata Vocabulary for Tabular Data (2015). Codes are declared as
+ * What the CSV files hold, after W3C's Metadata Vocabulary for Tabular Data (2015). Codes are declared as
  * strings, since a reader that guesses takes the zero off a county's code.
  */
 export function csvwMetadata(source: FileSource): unknown {
-	const { release, address } = source;
+	const { title, publishedAt, address } = source;
 	return {
 		"@context": ["http://www.w3.org/ns/csvw", { "@language": "en" }],
 		"@id": `${address}#tables`,
-		"dc:title": inLanguages(release.title),
+		"dc:title": inLanguages(title),
 		"dc:identifier": address,
-		"dc:issued": { "@value": release.publishedAt, "@type": "xsd:dateTime" },
+		"dc:issued": { "@value": publishedAt, "@type": "xsd:dateTime" },
 		tables: packageTables(source).map(tableOf),
 	};
 }
@@ -46,9 +46,9 @@ function tableOf({ name, columns, key, codes }: CodeTable) {
 			})),
 			primaryKey: key,
 			...(codes.length > 0 && {
-				foreignKeys: codes.map(({ column, table, key: columnReference }) => ({
-					columnReference: [column],
-					reference: { resource: `${table}.csv`, columnReference: [columnReference] },
+				foreignKeys: codes.map(({ columns: columnReference, table, keys }) => ({
+					columnReference,
+					reference: { resource: `${table}.csv`, columnReference: keys },
 				})),
 			}),
 		},

@@ -8,18 +8,18 @@ const types = { text: "string", integer: "integer", number: "number", date: "dat
 /** A file of the package with what proves that it came whole. */
 type Summed = Pick<ReleaseFile, "name"> & { bytes: number; sha256: string };
 
-/** The descriptor of a release's CSV files after Data Package and Table Schema, version 2.0. */
+/** The descriptor of the CSV files after Data Package and Table Schema, version 2.0. */
 export function dataPackage(source: FileSource, sums: readonly Summed[]): unknown {
-	const { release, address, words } = source;
+	const { name, address, title, about, version, publishedAt } = source;
 	return {
 		$schema: `${profile}/datapackage.json`,
-		name: `tallygrove-release-${release.number}`,
+		name,
 		id: address,
-		title: release.title.en,
-		description: words.en("dataroom:file.packageAbout", { season: release.season, number: release.number }),
+		title: title.en,
+		description: about.en,
 		homepage: address,
-		version: `${release.number}.0.0`,
-		created: release.publishedAt,
+		version,
+		created: publishedAt,
 		resources: packageTables(source).map((table) => resourceOf(table, source, sums)),
 	};
 }
@@ -50,9 +50,9 @@ function resourceOf(table: CodeTable, { words }: FileSource, sums: readonly Summ
 			missingValues: [""],
 			primaryKey: table.key,
 			...(table.codes.length > 0 && {
-				foreignKeys: table.codes.map(({ column, table: resource, key }) => ({
-					fields: [column],
-					reference: { resource, fields: [key] },
+				foreignKeys: table.codes.map(({ columns: fields, table: resource, keys }) => ({
+					fields,
+					reference: { resource, fields: keys },
 				})),
 			}),
 		},

@@ -4,6 +4,8 @@ const kinds: Record<string, string> = {
 	"measures.csv": "measures",
 	"crops.csv": "crops",
 	"areas.csv": "areas",
+	"releases.csv": "releases",
+	"table.csv": "laidOut",
 	"csv-metadata.json": "csvMetadata",
 	"datapackage.json": "dataPackage",
 	"cells.sdmx.csv": "sdmx",

@@ -3,7 +3,7 @@ import type { TFunction } from "i18next";
 import { listDataRows } from "../data-file.server.ts";
 import { toRecord } from "../data-file.ts";
 import { findReleaseById, listAreas, listCrops, listMeasures } from "../releases.server.ts";
-import type { FileSource } from "./release-file.ts";
+import { type FileSource, inBoth } from "./release-file.ts";
 
 /** Everything that a release's files are made from, read as the reader; undefined for one that is withdrawn or not there. */
 export async function findFileSource(
@@ -19,13 +19,22 @@ export async function findFileSource(
 		listCrops(releaseId),
 		listDataRows(releaseId),
 	]);
+	const told = areas.toSorted((a, b) => (a.key < b.key ? -1 : 1));
+	const values = { number: release.number, season: release.season };
 	return {
-		release,
-		measures,
-		areas: areas.toSorted((a, b) => (a.key < b.key ? -1 : 1)),
+		parts: [{ release, measures, areas: told, outlined: told }],
+		isTable: false,
+		name: `tallygrove-release-${release.number}`,
+		structureId: `RELEASE_${release.number}`,
+		title: release.title,
+		about: inBoth(words, "dataroom:file.packageAbout", values),
+		codebookTitle: inBoth(words, "dataroom:file.workbookTitle", values),
+		publishedAt: release.publishedAt,
+		version: `${release.number}.0.0`,
 		crops,
 		records: rows.map((row) => toRecord(release, row)),
 		words,
 		address: `${site}/data/${release.number}`,
+		besides: [],
 	};
 }

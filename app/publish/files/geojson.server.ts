@@ -1,22 +1,22 @@
 import { groupBy } from "#app/lib/group-by.ts";
-import { areaShapes } from "../area-shapes.server.ts";
+import { type AreaShape, areaShapes } from "../area-shapes.server.ts";
 import type { AreaKind } from "../cell.ts";
 import type { DataRecord } from "../data-file.ts";
 import type { FileSource } from "./release-file.ts";
 
 /**
  * Areas of one kind with their figures as GeoJSON (RFC 7946). Each area's `cells` hold the rows of cells.csv; beside them
- * each figure stands flat as `measure/crop`, null where there is none, with `measure/crop/status` to say why, since mapping
+ * each figure stands flat as `measure/crop`, in a table led by the release's number, null where there is none, with `measure/crop/status` to say why, since mapping
  * tools colour by a flat property.
  */
-export function cellsGeojson({ areas, records }: FileSource, kind: AreaKind): unknown {
+export function cellsGeojson({ parts, records, isTable }: FileSource, kind: AreaKind): unknown {
 	const recordsOf = groupBy(
 		records.filter((record) => record.area_kind === kind),
 		(record) => record.area_code,
 	);
 	return {
 		type: "FeatureCollection",
-		features: areaShapes(areas, kind).map(({ area, shape }) => {
+		features: shapesOf(parts, kind).map(({ area, shape }) => {
 			const cells = recordsOf.get(area.key) ?? [];
 			return {
 				type: "Feature",
@@ -27,7 +27,7 @@ export function cellsGeojson({ areas, records }: FileSource, kind: AreaKind): un
 					area_kind: area.kind,
 					area_name: area.name,
 					state_code: area.stateFips,
-					...Object.fromEntries(cells.flatMap(flat)),
+					...Object.fromEntries(cells.flatMap((cell) => flat(cell, isTable))),
 					cells,
 				},
 			};
@@ -35,9 +35,23 @@ export function cellsGeojson({ areas, records }: FileSource, kind: AreaKind): un
 	};
 }
 
-function flat({ measure, crop, value, status }: DataRecord): [string, number | string | null][] {
+/** Each area that is told once, outlined as in the latest release that tells it. */
+function shapesOf(parts: FileSource["parts"], kind: AreaKind): AreaShape[] {
+	const shapes = new Map<string, AreaShape>();
+	for (const { areas, outlined } of parts) {
+		const told = new Set(areas.map(({ key }) => key));
+		for (const one of areaShapes(outlined, kind)) if (told.has(one.area.key)) shapes.set(one.area.key, one);
+	}
+	return [...shapes.values()];
+}
+
+function flat(
+	{ release, measure, crop, value, status }: DataRecord,
+	isTable: boolean,
+): [string, number | string | null][] {
+	const name = isTable ? `${release}/${measure}/${crop}` : `${measure}/${crop}`;
 	return [
-		[`${measure}/${crop}`, value],
-		[`${measure}/${crop}/status`, status],
+		[name, value],
+		[`${name}/status`, status],
 	];
 }

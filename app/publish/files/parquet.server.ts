@@ -11,7 +11,7 @@ const types: Record<ColumnType, Pick<SchemaElement, "type" | "converted_type">> 
 };
 
 /** The cells as Apache Parquet: the rows of cells.csv in their order, what is empty there is null here. */
-export function cellsParquet({ records, release, address }: FileSource): Uint8Array {
+export function cellsParquet({ records, parts, address }: FileSource): Uint8Array {
 	const columnData: ColumnSource[] = dataColumns.map((name) => ({
 		name,
 		data: records.map((record) => (columnType(name) === "date" ? dateOf(record[name]) : record[name])),
@@ -25,7 +25,7 @@ export function cellsParquet({ records, release, address }: FileSource): Uint8Ar
 		})),
 	];
 	const kvMetadata = [
-		{ key: "release", value: `${release.number}` },
+		{ key: "release", value: parts.map(({ release }) => release.number).join(",") },
 		{ key: "address", value: address },
 	];
 	return new Uint8Array(parquetWriteBuffer({ columnData, schema, kvMetadata }));

@@ -14,7 +14,10 @@ export const sdmxId = (key: string): string => key.replaceAll(".", "-");
 export const confidentiality = (status: ObservationStatus): "C" | "F" => (status === "Q" ? "C" : "F");
 
 /** The code lists of a release; the statuses are the part of SDMX's cross-domain lists that is used. */
-export function codeLists({ measures, crops, areas, words }: FileSource): CodeList[] {
+export function codeLists(source: FileSource): CodeList[] {
+	const { crops, words, isTable } = source;
+	const measures = namedOnce(source.parts.flatMap((part) => part.measures));
+	const areas = namedOnce(source.parts.flatMap((part) => part.areas));
 	const listed = (ids: readonly string[], key: (id: string) => string) =>
 		ids.map((id) => ({ id, names: inBoth(words, key(id)) }));
 	return [
@@ -30,6 +33,7 @@ export function codeLists({ measures, crops, areas, words }: FileSource): CodeLi
 			name: "Measures",
 			codes: measures.map(({ key, label }) => ({ id: sdmxId(key), names: { ...label } })),
 		},
+		...(isTable ? [releaseList(source)] : []),
 		{
 			id: "CL_UNIT",
 			name: "Units",
@@ -52,3 +56,17 @@ export function codeLists({ measures, crops, areas, words }: FileSource): CodeLi
 		},
 	];
 }
+
+/** A code stands in its list once, as the latest release names it. */
+const namedOnce = <T extends { key: string }>(items: T[]): T[] => [
+	...new Map(items.map((item) => [item.key, item])).values(),
+];
+
+const releaseList = ({ parts, words }: FileSource): CodeList => ({
+	id: "CL_RELEASE",
+	name: words.en("dataroom:column.release.name"),
+	codes: parts.map(({ release: { number, title, season } }) => ({
+		id: `${number}`,
+		names: { en: `${title.en} ${season}`, es: `${title.es} ${season}` },
+	})),
+});

@@ -2,21 +2,24 @@ import { toCsv } from "../data-file.ts";
 import type { FileSource } from "./release-file.ts";
 import { agency, codeLists, confidentiality, sdmxId, version } from "./sdmx-codes.ts";
 
-const dimensions = ["FREQ", "REF_AREA", "TIME_PERIOD", "CROP", "MEASURE"] as const;
+/** Of a table also the release: one season can have several. */
+const dimensionsOf = ({ isTable }: FileSource): string[] => (isTable ? [...always, "RELEASE"] : always);
+const always = ["FREQ", "REF_AREA", "TIME_PERIOD", "CROP", "MEASURE"];
 const numbers = ["STANDARD_ERROR", "CV", "LOWER", "UPPER", "FIRST_QUARTILE", "THIRD_QUARTILE"] as const;
 const words = ["RESPONDENTS_BAND", "STEADINESS", "UNIT_MEASURE", "OBS_STATUS", "CONF_STATUS"] as const;
-
-const structureId = (number: number) => `RELEASE_${number}`;
 
 /**
  * The cells as SDMX-CSV 2.0. A value that is missing on purpose is NaN, which the format keeps apart from one that is not
  * told; an attribute that is missing is empty. The numbers and their order are those of cells.csv.
  */
-export function sdmxCsv({ release, measures, records }: FileSource): string {
-	const unitOf = new Map(measures.map(({ key, unit }) => [key, unit]));
-	const structure = `${agency}:${structureId(release.number)}(${version})`;
+export function sdmxCsv(source: FileSource): string {
+	const { parts, records, structureId, isTable } = source;
+	const unitOf = new Map(
+		parts.flatMap(({ release, measures }) => measures.map(({ key, unit }) => [`${release.number} ${key}`, unit])),
+	);
+	const structure = `${agency}:${structureId}(${version})`;
 	return toCsv(
-		["STRUCTURE", "STRUCTURE_ID", "ACTION", ...dimensions, "OBS_VALUE", ...numbers, ...words],
+		["STRUCTURE", "STRUCTURE_ID", "ACTION", ...dimensionsOf(source), "OBS_VALUE", ...numbers, ...words],
 		records.map((record) => [
 			"datastructure",
 			structure,
@@ -26,6 +29,7 @@ export function sdmxCsv({ release, measures, records }: FileSource): string {
 			record.season,
 			record.crop,
 			sdmxId(record.measure),
+			...(isTable ? [record.release] : []),
 			record.value ?? "NaN",
 			record.standard_error,
 			record.cv,
@@ -35,7 +39,7 @@ export function sdmxCsv({ release, measures, records }: FileSource): string {
 			record.third_quartile,
 			record.respondents_band,
 			record.steadiness,
-			unitOf.get(record.measure) ?? null,
+			unitOf.get(`${record.release} ${record.measure}`) ?? null,
 			record.status,
 			confidentiality(record.status),
 		]),
@@ -47,6 +51,7 @@ const listOf: Record<string, string> = {
 	REF_AREA: "CL_AREA",
 	CROP: "CL_CROP",
 	MEASURE: "CL_MEASURE",
+	RELEASE: "CL_RELEASE",
 	UNIT_MEASURE: "CL_UNIT",
 	STEADINESS: "CL_STEADINESS",
 	OBS_STATUS: "CL_OBS_STATUS",
@@ -55,13 +60,13 @@ const listOf: Record<string, string> = {
 
 /** The data structure with its concepts and code lists, as an SDMX-JSON 2.0 structure message. */
 export function sdmxStructure(source: FileSource): unknown {
-	const { release } = source;
+	const { structureId, title, publishedAt } = source;
 	const maintained = { agencyID: agency, version };
 	return {
 		meta: {
 			schema: "https://json.sdmx.org/2.0.0/sdmx-json-structure-schema.json",
-			id: structureId(release.number),
-			prepared: release.publishedAt,
+			id: structureId,
+			prepared: publishedAt,
 			contentLanguages: ["en", "es"],
 			sender: { id: agency },
 		},
@@ -71,7 +76,10 @@ export function sdmxStructure(source: FileSource): unknown {
 					...maintained,
 					id: "CONCEPTS",
 					name: "Concepts",
-					concepts: [...dimensions, "OBS_VALUE", ...numbers, ...words].map((id) => ({ id, name: conceptName(id) })),
+					concepts: [...dimensionsOf(source), "OBS_VALUE", ...numbers, ...words].map((id) => ({
+						id,
+						name: conceptName(id),
+					})),
 				},
 			],
 			codelists: codeLists(source).map(({ id, name, codes }) => ({
@@ -83,10 +91,10 @@ export function sdmxStructure(source: FileSource): unknown {
 			dataStructures: [
 				{
 					...maintained,
-					id: structureId(release.number),
-					name: release.title.en,
-					names: release.title,
-					dataStructureComponents: components(),
+					id: structureId,
+					name: title.en,
+					names: title,
+					dataStructureComponents: components(dimensionsOf(source)),
 				},
 			],
 		},
@@ -108,7 +116,7 @@ function component(id: string) {
 	};
 }
 
-function components() {
+function components(dimensions: string[]) {
 	const attribute = (id: string) => ({
 		...component(id),
 		usage: id === "OBS_STATUS" || id === "CONF_STATUS" ? "mandatory" : "optional",
@@ -117,7 +125,7 @@ function components() {
 	return {
 		dimensionList: {
 			id: "DimensionDescriptor",
-			dimensions: dimensions.filter((id) => id !== "TIME_PERIOD").map(component),
+			dimensions: dimensions.filter((id) => id !== "TIME_PERIOD").map((id) => component(id)),
 			timeDimension: component("TIME_PERIOD"),
 		},
 		measureList: { id: "MeasureDescriptor", measures: [component("OBS_VALUE")] },

@@ -13,8 +13,8 @@ export async function cellsWorkbook(source: FileSource): Promise<Uint8Array> {
 	const sink = new PassThrough();
 	const taken = buffer(sink);
 	const book = new ExcelJS.stream.xlsx.WorkbookWriter({ stream: sink, useStyles: true });
-	// The same release gives the same file, as far as the format lets it.
-	book.created = new Date(source.release.publishedAt);
+	// The same source gives the same file, as far as the format lets it.
+	book.created = new Date(source.publishedAt);
 	book.modified = book.created;
 	addCells(book, source);
 	addCodebook(book, source, "en");
@@ -35,12 +35,9 @@ function addCells(book: Book, { records }: FileSource): void {
 }
 
 function addCodebook(book: Book, source: FileSource, language: "en" | "es"): void {
-	const { words, release } = source;
 	const sheet = book.addWorksheet(language === "en" ? "codebook" : "códigos");
 	const [header, ...rows] = codebookRows(source, language);
-	sheet
-		.addRow([words[language]("dataroom:file.workbookTitle", { number: release.number, season: release.season })])
-		.commit();
+	sheet.addRow([source.codebookTitle[language]]).commit();
 	sheet.addRow([source.address]).commit();
 	sheet.addRow([]).commit();
 	for (const row of [header!, ...rows]) sheet.addRow(row).commit();

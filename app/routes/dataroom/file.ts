@@ -21,7 +21,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const name = savedName(release.number, file.name);
 	const response = await serveFile(request, release.releaseId, file, { name, visibility: "private" });
 	if (response.status === 200 || response.status === 206) {
-		await recordDownload(researcher, release.releaseId, file.name);
+		await recordDownload(researcher, [release.releaseId], file.name);
 	}
 	return response;
 }

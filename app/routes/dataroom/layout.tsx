@@ -40,6 +40,7 @@ function DataroomTabs() {
 				label={t("nav.dataroomLabel")}
 				items={[
 					{ to: "/dataroom", label: t("nav.files"), end: true },
+					{ to: "/dataroom/tables", label: t("nav.tables") },
 					{ to: "/dataroom/keys", label: t("nav.keys") },
 					{ to: "/dataroom/access", label: t("nav.askAccess") },
 				]}

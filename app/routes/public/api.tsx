@@ -8,7 +8,7 @@ import { Section } from "#app/components/section.tsx";
 import { getT } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { env } from "#app/lib/env.server.ts";
-import { mostRows, mostValues } from "#app/publish/api/parameters.ts";
+import { mostRows, mostValues } from "#app/publish/api/limits.ts";
 import { problemStatus } from "#app/publish/api/problem.ts";
 import { observationStatuses } from "#app/publish/data-file.ts";
 import { findLatestRelease, listMeasures } from "#app/publish/releases.server.ts";

@@ -1,0 +1,79 @@
+import { useTranslation } from "react-i18next";
+import { useRevalidator } from "react-router";
+import { Button } from "#app/components/button.tsx";
+import { Chart } from "#app/components/chart/chart.tsx";
+import { classes } from "#app/components/classes.ts";
+import { EmptyState } from "#app/components/empty-state.tsx";
+import { Notice } from "#app/components/notice.tsx";
+import { Section } from "#app/components/section.tsx";
+import { useFormat } from "#app/i18n/use-format.ts";
+import { countCells } from "#app/publish/tables/catalogue.ts";
+import { TableDownloads } from "./table-downloads.tsx";
+import { TableGrid } from "./table-grid.tsx";
+import { TableMapView } from "./table-map.tsx";
+import { TableNotes } from "./table-notes.tsx";
+import type { TablePage } from "./table-page.ts";
+
+type ResultProps = TablePage & { busy: boolean };
+
+/** What a choice comes to: notes on what can be compared, drawings, the table, and ways to take it along. */
+export function TableResult(props: ResultProps) {
+	const { table, busy, state, catalogue, selection } = props;
+	const { t } = useTranslation("dataroom");
+	const format = useFormat();
+	const said = busy
+		? t("tables.loading")
+		: table
+			? t("tables.count", { rows: format.number(table.rowCount), cells: format.number(table.cellCount) })
+			: t("tables.noTable");
+	return (
+		<Section title={t("tables.result")}>
+			<output className="block min-h-6 text-quiet">{said}</output>
+			<div aria-busy={busy} className={classes(busy && "opacity-60")}>
+				{state === "failed" && <Failed />}
+				{state !== "failed" && !table && (
+					<EmptyState title={t("tables.noTableTitle")}>{t("tables.noTableBody")}</EmptyState>
+				)}
+				{table && table.cellCount === 0 && (
+					<EmptyState title={t("tables.noCellsTitle")}>
+						{t(countCells(catalogue, selection) > 0 ? "tables.noCellsBody" : "tables.noneSuchBody")}
+					</EmptyState>
+				)}
+				{table && table.cellCount > 0 && <Told {...props} table={table} />}
+			</div>
+		</Section>
+	);
+}
+
+function Told(props: ResultProps & { table: NonNullable<TablePage["table"]> }) {
+	const { table, catalogue, notes, picture } = props;
+	const { t } = useTranslation("dataroom");
+	return (
+		<>
+			<TableNotes notes={notes} catalogue={catalogue} />
+			{typeof table.chart === "string" ? (
+				<p className="mt-3 max-w-prose text-sm text-quiet">{t(`tables.noChart.${table.chart}`)}</p>
+			) : (
+				<Chart {...table.chart} alone />
+			)}
+			{table.map && picture && <TableMapView map={table.map} picture={picture} catalogue={catalogue} />}
+			<TableGrid {...props} />
+			<TableDownloads {...props} />
+		</>
+	);
+}
+
+function Failed() {
+	const { t } = useTranslation("dataroom");
+	const { revalidate, state } = useRevalidator();
+	return (
+		<div role="alert">
+			<Notice tone="attention" title={t("tables.failedTitle")}>
+				<p className="mb-3">{t("tables.failedBody")}</p>
+				<Button type="button" kind="secondary" busy={state === "loading"} onClick={() => void revalidate()}>
+					{t("tables.retry")}
+				</Button>
+			</Notice>
+		</div>
+	);
+}
