@@ -169,7 +169,7 @@ test("what is wrong comes back beside its field with what was typed, and nothing
 		harvested_unit: "lb",
 	});
 	expect(status).toBe(400);
-	expect(text).toContain("<title>To mend: ");
+	expect(text).toContain("<title>To fix: ");
 	for (const typed of [
 		'value="-4"',
 		'value="12,5 bu"',

@@ -18,6 +18,7 @@ const sameInBoth: Record<string, string> = {
 	"common:language.": "each language is named in its own words",
 	"common:state.": "names of states that Spanish leaves alone",
 	"common:crop.aronia": "the plant's botanical name",
+	"public:crop_said.aronia": "the plant's botanical name",
 	"common:unit.lb": "a unit's sign",
 	"common:unit.kg": "a unit's sign",
 	"common:unit.fahrenheit": "a unit's sign",
