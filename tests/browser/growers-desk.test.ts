@@ -98,7 +98,7 @@ test("a file with errors is mended and read in, and the import undone", async ()
 	await fits(page);
 	const [download] = await Promise.all([
 		page.waitForEvent("download"),
-		press(page, "link", "Download the rows to mend"),
+		press(page, "link", "Download the rows to fix"),
 	]);
 	const chunks: Buffer[] = [];
 	for await (const chunk of await download.createReadStream()) chunks.push(chunk as Buffer);

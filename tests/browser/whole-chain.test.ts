@@ -80,7 +80,7 @@ async function openAndInvite(associate: Visitor): Promise<string> {
 	await associate.getByRole("button", { name: "Open it" }).click();
 	await associate.getByRole("button", { name: "Send invitations" }).click();
 	await associate.getByRole("dialog").getByRole("button", { name: "Send", exact: true }).click();
-	await associate.getByText(`${growers.length} mails are on their way.`).waitFor();
+	await associate.getByText(`${growers.length} e-mails are on their way.`).waitFor();
 	return associate.url();
 }
 

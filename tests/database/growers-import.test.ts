@@ -240,7 +240,7 @@ describe("a list in a file", () => {
 		await step(importId, "importing");
 		const [bad] = await asDesk(iowa, (trx) => listBadRows(trx, importId));
 		expect(bad!.cells).toEqual([`${word} bad`, "Jonhson"]);
-		const again = await readIn(toCsv(["Farm", "County", "To mend"], [[`=${word} bad`, "Johnson", "County: …"]]));
+		const again = await readIn(toCsv(["Farm", "County", "To fix"], [[`=${word} bad`, "Johnson", "County: …"]]));
 		expect((await check(again)).counts).toMatchObject({ bad: 0, operations: 1 });
 		await step(again, "importing");
 		expect(await count(owner, "directory.operation where name = $1", [`=${word} bad`])).toBe(1);
