@@ -1,10 +1,4 @@
-import {
-	domainDegreesOfFreedom,
-	domainStrata,
-	domainTotals,
-	type DomainStratum,
-	type StratumTally,
-} from "#app/estimate/domain.ts";
+import { domainDegreesOfFreedom, domainStrata, domainTotals, type StratumTally } from "#app/estimate/domain.ts";
 import { estimateOf, type Figure } from "#app/estimate/estimators.ts";
 import { normalInterval, proportionInterval, type Interval } from "#app/estimate/interval.ts";
 import { linearize, type EstimateKind } from "#app/estimate/linearize.ts";
@@ -53,28 +47,57 @@ export function estimateCell(
 ): Estimate {
 	const rows = [...tallies].filter((tally) => tally.n > 0);
 	const strata = domainStrata(frame, rows);
-	const { respondents } = domainTotals(strata);
-	const keys = new Set(rows.map((tally) => tally.stratumKey));
-	const joins = frame.joins.filter((join) => join.stratumKeys.some((key) => keys.has(key)));
+	return cellOf(
+		measure,
+		{
+			respondents: domainTotals(strata).respondents,
+			joins: joinsAmong(frame, new Set(rows.map((tally) => tally.stratumKey))),
+			everybody: strata.every((stratum) => stratum.domain.n === 0 || stratum.samplingFraction === 1),
+			freedom: domainDegreesOfFreedom(strata),
+			value: () => linearize(measure.kind, strata)?.value ?? null,
+			figure: () => estimateOf(measure.kind, strata),
+		},
+		cutOffs,
+	);
+}
+
+/** The joins among strata that hold an area's answers. */
+export function joinsAmong({ joins }: StrataFrame, stratumKeys: ReadonlySet<string>): Join[] {
+	return joins.filter((join) => join.stratumKeys.some((key) => stratumKeys.has(key)));
+}
+
+/** What an estimate is made of, by whichever weights. `everybody`: all of the strata that hold the area's answers answered. */
+export type CellParts = {
+	respondents: number;
+	joins: Join[];
+	everybody: boolean;
+	/** Respondents of the area less the strata that hold them. */
+	freedom: number;
+	/** Without its variance, which the stratum of a lone respondent need not have; null where there is nothing to divide by. */
+	value: () => number | null;
+	figure: () => Figure | null;
+};
+
+/** An estimate as it may be leant on: see `estimateCell`. */
+export function cellOf(measure: EstimatedMeasure, parts: CellParts, cutOffs?: SteadinessCutOffs): Estimate {
+	const { respondents, joins, everybody } = parts;
 	const empty = { value: null, standardError: null, cv: null, lower: null, upper: null, steadiness: "rough" } as const;
 	if (respondents === 0) return { ...empty, respondents, joins, missing: "no_respondents" };
-
 	if (respondents === 1) {
-		// The value without its variance, which the stratum of a lone respondent need not have.
-		const value = linearize(measure.kind, strata)?.value ?? null;
+		const value = parts.value();
 		return { ...empty, value, respondents, joins, missing: value === null ? "no_base" : "one_respondent" };
 	}
-	const figure = figureOf(measure.kind, strata);
+	const figure = settled(measure.kind, parts.figure());
 	if (!figure) return { ...empty, respondents, joins, missing: "no_base" };
 
 	const { value, standardError } = figure;
 	const cv = value === 0 ? null : standardError / Math.abs(value);
-	const everybody = strata.every((stratum) => stratum.domain.n === 0 || stratum.samplingFraction === 1);
+	const interval = everybody ? { lower: value, upper: value } : intervalOf(measure.kind, figure, parts);
 	return {
 		value,
 		standardError,
 		cv,
-		...clip(everybody ? { lower: value, upper: value } : intervalOf(measure.kind, figure, strata), measure.range),
+		...clip(interval, measure.range),
 		respondents,
 		steadiness: steadiness({ cv, standardError, everybody }, cutOffs),
 		joins,
@@ -82,16 +105,18 @@ export function estimateCell(
 	};
 }
 
-function figureOf(kind: EstimateKind, strata: readonly DomainStratum[]): Figure | null {
-	const figure = estimateOf(kind, strata);
+function settled(kind: EstimateKind, figure: Figure | null): Figure | null {
 	// Weighted sums of parts that are the whole can come out a rounding above it.
 	if (kind === "proportion" && figure && Math.abs(figure.value - 1) < 1e-12) return { ...figure, value: 1 };
 	return figure;
 }
 
-function intervalOf(kind: EstimateKind, figure: Figure, strata: readonly DomainStratum[]): Interval | null {
-	if (kind !== "proportion") return normalInterval(figure);
-	return proportionInterval(figure, domainDegreesOfFreedom(strata), domainTotals(strata).respondents);
+function intervalOf(
+	kind: EstimateKind,
+	figure: Figure,
+	{ freedom, respondents }: Pick<CellParts, "freedom" | "respondents">,
+): Interval | null {
+	return kind === "proportion" ? proportionInterval(figure, freedom, respondents) : normalInterval(figure);
 }
 
 function clip(

@@ -1,6 +1,13 @@
-import type { Estimate } from "#app/estimate/cell.ts";
+import { type CellParts, type Estimate, joinsAmong } from "#app/estimate/cell.ts";
 import { proportionInterval } from "#app/estimate/interval.ts";
-import { type DayTally, histogramStrata, quantileEstimate, quantileValue } from "#app/estimate/quantile.ts";
+import {
+	type DayTally,
+	histogramStrata,
+	quantileEstimate,
+	type QuantileFigure,
+	quantileValue,
+	type WeightedCounts,
+} from "#app/estimate/quantile.ts";
 import { daySteadiness, type SteadinessCutOffs } from "#app/estimate/steadiness.ts";
 import type { StrataFrame } from "#app/estimate/strata.ts";
 
@@ -27,18 +34,34 @@ export function estimateDays(
 	const strata = histogramStrata(frame, rows);
 	const present = strata.filter(({ counts }) => counts.length > 0);
 	const respondents = present.flatMap(({ counts }) => counts).reduce((sum, { n }) => sum + n, 0);
-	const keys = new Set(rows.map(({ stratumKey }) => stratumKey));
-	const joins = frame.joins.filter((join) => join.stratumKeys.some((key) => keys.has(key)));
+	return dayOf(
+		{
+			respondents,
+			joins: joinsAmong(frame, new Set(rows.map(({ stratumKey }) => stratumKey))),
+			everybody: present.every(({ samplingFraction }) => samplingFraction === 1),
+			present,
+			median: () => quantileEstimate(strata, 0.5, { interval: proportionInterval }),
+		},
+		cutOffs,
+	);
+}
+
+/** What a figure of days is made of, by whichever weights. `present` are the answers of the area. */
+export type DayParts = Pick<CellParts, "respondents" | "joins" | "everybody"> & {
+	present: readonly WeightedCounts[];
+	median: () => QuantileFigure | null;
+};
+
+/** A figure of days as it may be leant on: see `estimateDays`. */
+export function dayOf({ present, median, ...parts }: DayParts, cutOffs?: SteadinessCutOffs): DayEstimate {
+	const { respondents, joins, everybody } = parts;
 	const found = { respondents, joins, cv: null };
 	const empty = { standardError: null, lower: null, upper: null, steadiness: "rough" } as const;
 	const value = quantileValue(present, 0.5);
 	if (value === null) return { ...found, ...empty, value, missing: "no_respondents" };
 	if (respondents === 1) return { ...found, ...empty, value, missing: "one_respondent" };
 
-	const everybody = present.every(({ samplingFraction }) => samplingFraction === 1);
-	const { lower, upper, standardError } = everybody
-		? { lower: value, upper: value, standardError: 0 }
-		: quantileEstimate(strata, 0.5, { interval: proportionInterval })!;
+	const { lower, upper, standardError } = everybody ? { lower: value, upper: value, standardError: 0 } : median()!;
 	const halfWidth = lower === null || upper === null ? null : (upper - lower) / 2;
 	return {
 		...found,

@@ -5,9 +5,9 @@ import type { StrataFrame } from "#app/estimate/strata.ts";
 import { tInterval, type Interval } from "#app/estimate/interval.ts";
 
 /** One stratum's answers in the domain as counts by value: a day measure's histogram by day of year. */
-export type HistogramStratum = Pick<DomainStratum, "weight" | "samplingFraction" | "respondents"> & {
-	counts: readonly { value: number; n: number }[];
-};
+export type HistogramStratum = WeightedCounts & Pick<DomainStratum, "samplingFraction" | "respondents">;
+/** Counts by value of answers that share one weight. */
+export type WeightedCounts = { weight: number; counts: readonly { value: number; n: number }[] };
 
 /** An area's tally row of a measure of days, as far as quantiles need it. */
 export type DayTally = { stratumKey: string; days: readonly { value: number; n: number }[] | null };
@@ -67,18 +67,41 @@ type Step = { value: number; cumulative: number };
 export function quantileEstimate(
 	strata: readonly HistogramStratum[],
 	p: number,
-	{ rule = "lower", df, interval = tInterval }: { rule?: QuantileRule; df?: number; interval?: ShareInterval } = {},
+	options: QuantileOptions & { df?: number } = {},
+): QuantileFigure | null {
+	return quantileByShare(
+		strata,
+		p,
+		(value) => {
+			const below = sharesAtOrBelow(strata, value);
+			const respondents = below.reduce((sum, stratum) => sum + stratum.domain.n, 0);
+			return { share: ratioEstimate(below)!, respondents, freedom: options.df ?? domainDegreesOfFreedom(below) };
+		},
+		options,
+	);
+}
+
+export type QuantileOptions = { rule?: QuantileRule; interval?: ShareInterval };
+/** The share of a domain at or below a value, and how many told one. */
+export type ShareBelow = { share: Figure; respondents: number; freedom: number };
+
+/**
+ * The same by whichever weights: parts of the domain that share one, or each operation by itself.
+ * @param shareAt estimates the share at or below a value.
+ */
+export function quantileByShare(
+	parts: readonly WeightedCounts[],
+	p: number,
+	shareAt: (value: number) => ShareBelow,
+	{ rule = "lower", interval = tInterval }: QuantileOptions = {},
 ): QuantileFigure | null {
 	if (!(p > 0 && p < 1)) throw new RangeError(`no quantile at ${p}`);
-	const steps = distribution(strata);
+	const steps = distribution(parts);
 	if (steps.length === 0) return null;
 
 	const value = valueAt(steps, p, rule);
-	const below = sharesAtOrBelow(strata, value);
-	const share = ratioEstimate(below)!;
-	const respondents = below.reduce((sum, stratum) => sum + stratum.domain.n, 0);
+	const { share, respondents, freedom } = shareAt(value);
 	const figure = { value, share, respondents };
-	const freedom = df ?? domainDegreesOfFreedom(below);
 	const ends = respondents < 2 ? null : interval(share, freedom, respondents);
 	if (!ends || freedom < 1) return { ...figure, lower: null, upper: null, standardError: null };
 
@@ -91,7 +114,7 @@ export function quantileEstimate(
 
 /** The value alone, which a stratum of one respondent has too. @returns null where nobody of the domain answered. */
 export function quantileValue(
-	strata: readonly HistogramStratum[],
+	strata: readonly WeightedCounts[],
 	p: number,
 	rule: QuantileRule = "lower",
 ): number | null {
@@ -100,7 +123,7 @@ export function quantileValue(
 }
 
 /** Values in rising order, each with the weight at or below it. */
-function distribution(strata: readonly HistogramStratum[]): Step[] {
+function distribution(strata: readonly WeightedCounts[]): Step[] {
 	const weights = new Map<number, number>();
 	for (const { weight, counts } of strata) {
 		for (const { value, n } of counts) if (n > 0) weights.set(value, (weights.get(value) ?? 0) + weight * n);

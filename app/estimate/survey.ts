@@ -1,4 +1,4 @@
-import { estimateCell, type EstimateKind } from "#app/estimate/cell.ts";
+import { type Estimate, estimateCell, type EstimatedMeasure, type EstimateKind } from "#app/estimate/cell.ts";
 import type { SteadinessCutOffs } from "#app/estimate/steadiness.ts";
 import { joinStrata, respondentsByStratum, type Join, type StrataFrame } from "#app/estimate/strata.ts";
 import { type DayEstimate, estimateDays } from "#app/estimate/days.ts";
@@ -72,15 +72,18 @@ function estimateArea(
 		const days = rows.map((row) => ({ stratumKey: row.stratumKey, days: row.days ?? null }));
 		return estimateDays(strata, days, cutOffs);
 	}
-	// A share of a whole cannot leave 0 to 1. A loss can be below 0 (a crop above normal), so only a proportion is cut.
-	const range =
-		measure.kind === "proportion"
-			? { lowest: 0, highest: 1 }
-			: measure.unit === "percent"
-				? { highest: 1 }
-				: { lowest: 0 };
-	const estimate = estimateCell({ kind: measure.kind, range }, strata, rows, cutOffs);
-	const scaled = (value: number | null) => (value === null ? null : value * measure.scale);
+	return inUnitOf(measure, estimateCell({ kind: measure.kind, range: rangeOf(measure) }, strata, rows, cutOffs));
+}
+
+/** A share of a whole cannot leave 0 to 1. A loss can be below 0 (a crop above normal), so only a proportion is cut. */
+export function rangeOf({ kind, unit }: Pick<SurveyMeasure, "kind" | "unit">): EstimatedMeasure["range"] {
+	if (kind === "proportion") return { lowest: 0, highest: 1 };
+	return unit === "percent" ? { highest: 1 } : { lowest: 0 };
+}
+
+/** An estimate in the unit that the measure is told in. */
+export function inUnitOf({ scale }: Pick<SurveyMeasure, "scale">, estimate: Estimate): Estimate {
+	const scaled = (value: number | null) => (value === null ? null : value * scale);
 	return {
 		...estimate,
 		value: scaled(estimate.value),

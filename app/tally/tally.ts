@@ -51,3 +51,18 @@ export type FrameStratum = { stratumKey: string; stateFips: string; sizeClass: n
 
 /** How many operations answered about a crop in a stratum, in whichever county and to whichever measure. */
 export type CropRespondents = { cropKey: string; stratumKey: string; respondents: number };
+
+/** What a county and stratum of a survey's frame has of a crop: how many operations, and their bearing trees at opening. */
+export type FrameCell = {
+	countyFips: string;
+	stratumKey: string;
+	operations: number;
+	bearingTrees: number;
+};
+
+/** What one operation told of a measure and crop, with the bearing trees that the frame has of it. */
+export type ToldAnswer = Pick<FrameCell, "countyFips" | "stratumKey" | "bearingTrees"> & {
+	operationId: string;
+	y: number;
+	x: number;
+};

@@ -18,6 +18,8 @@ export type Calibration = {
 	 * regression on what was calibrated to. Their variance is the calibrated estimate's.
 	 */
 	unexplained(values: readonly number[]): number[];
+	/** How often all margins were gone through until they were met; 0 for what is solved at once. */
+	sweeps: number;
 };
 
 /**

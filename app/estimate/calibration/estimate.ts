@@ -38,17 +38,30 @@ export function calibratedEstimate(
 	const linearized = linearize(kind, weightedAnswers(calibration, answers));
 	if (!linearized) return null;
 	const values = answers.map((answer) => (answer ? contribution(linearized, answer) : 0));
+	const variance = unexplainedVariances(sample, calibration, values).reduce((sum, one) => sum + one, 0);
+	return { value: linearized.value, standardError: Math.sqrt(variance) };
+}
+
+/**
+ * What each stratum adds to the variance of the weighted total of values, one an operation, after calibration.
+ * @returns in the order of the sample's strata, 0 for those without respondents.
+ * @throws {RangeError} as `linearizedVariance`.
+ */
+export function unexplainedVariances(sample: Sample, calibration: Calibration, values: readonly number[]): number[] {
 	const rest = calibration.unexplained(values);
-	const weighted = rest.map((value, i) => ({ y: calibration.weights[i]! * value, x: 0 }));
-	const strata = sample.samplingFractions.flatMap((samplingFraction, stratum) => {
-		const own = weighted.filter((_, i) => sample.operations[i]!.stratum === stratum);
-		return own.length > 0 ? [{ weight: 1, samplingFraction, respondents: own.length, domain: momentsOf(own) }] : [];
+	const weighted = sample.samplingFractions.map((): { y: number; x: number }[] => []);
+	for (const [i, { stratum }] of sample.operations.entries())
+		weighted[stratum]!.push({ y: calibration.weights[i]! * rest[i]!, x: 0 });
+	return weighted.map((own, stratum) => {
+		if (own.length === 0) return 0;
+		const samplingFraction = sample.samplingFractions[stratum]!;
+		return linearizedVariance([{ weight: 1, samplingFraction, respondents: own.length, domain: momentsOf(own) }], asIs);
 	});
-	return { value: linearized.value, standardError: Math.sqrt(linearizedVariance(strata, asIs)) };
 }
 
 const asIs = { slope: preciseZero, intercept: preciseZero, scale: 1 };
 
-function contribution(linearized: Linearized, { y, x }: { y: number; x: number }): number {
+/** What one operation of the domain adds to the error of a figure, unweighted. */
+export function contribution(linearized: Linearized, { y, x }: { y: number; x: number }): number {
 	return residualSum(linearized, { n: 1, sumY: y, sumX: x }) / linearized.scale;
 }

@@ -33,6 +33,7 @@ export function calibrateLinear(sample: Sample, auxiliaries: readonly Auxiliary[
 		weights: weights.map((weight, i) => weight * factors[i]!),
 		factors,
 		unexplained: (values) => residualsOf(values, basis, weights),
+		sweeps: 0,
 	};
 }
 

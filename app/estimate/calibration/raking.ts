@@ -50,7 +50,7 @@ export function rake(
 		const cell = cells.get(key) ?? { groups: margins.map(({ groups }) => groups[i]!), base: 0, total: 0 };
 		cells.set(key, { ...cell, base: cell.base + weights[i]!, total: cell.total + weights[i]! });
 	}
-	sweepUntilMet([...cells.values()], margins, { tolerance, mostSweeps });
+	const sweeps = sweepUntilMet([...cells.values()], margins, { tolerance, mostSweeps });
 
 	const factors = keys.map((key) => cells.get(key)!.total / cells.get(key)!.base);
 	const basis = independentBasis(margins.flatMap(indicatorsOf), weights);
@@ -58,18 +58,20 @@ export function rake(
 		weights: weights.map((weight, i) => weight * factors[i]!),
 		factors,
 		unexplained: (values) => residualsOf(values, basis, weights),
+		sweeps,
 	};
 }
 
 type Cell = { groups: string[]; base: number; total: number };
 
-function sweepUntilMet(cells: Cell[], margins: readonly Margin[], options: Required<RakingOptions>): void {
+/** @returns after how many sweeps every margin was met. */
+function sweepUntilMet(cells: Cell[], margins: readonly Margin[], options: Required<RakingOptions>): number {
 	const size = sumOf(margins[0]!.totals.values());
 	for (let sweep = 0; sweep < options.mostSweeps; sweep++) {
 		const before = cells.map(({ total }) => total);
 		for (const [m, { totals }] of margins.entries()) scaleTo(cells, m, totals);
 		const moved = Math.max(...cells.map(({ total }, i) => Math.abs(total - before[i]!)));
-		if (moved < options.tolerance * size && farthest(cells, margins) <= options.tolerance * size) return;
+		if (moved < options.tolerance * size && farthest(cells, margins) <= options.tolerance * size) return sweep + 1;
 	}
 	throw new CalibrationError(
 		"not_converged",
@@ -97,7 +99,8 @@ function groupTotals(cells: Cell[], m: number): Map<string, number> {
 	return found;
 }
 
-function indicatorsOf({ name, groups, totals }: Margin): Auxiliary[] {
+/** A margin as auxiliaries: one for each group, 1 for who is in it. */
+export function indicatorsOf({ name, groups, totals }: Margin): Auxiliary[] {
 	return [...totals].map(([group, total]) => ({
 		name: `${name} ${group}`,
 		values: groups.map((own) => (own === group ? 1 : 0)),
