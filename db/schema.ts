@@ -399,6 +399,7 @@ export interface CollectSurvey {
   season: number;
   survey_id: Generated<string>;
   title: Json;
+  weighting: Generated<string>;
 }
 
 export interface CollectSurveyBrief {

@@ -16,6 +16,7 @@ export const logActions = {
 		"reminded",
 		"link_replaced",
 		"form_changed",
+		"weighted",
 	],
 	form: ["created", "published", "dropped"],
 	operation: [

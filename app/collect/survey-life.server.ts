@@ -7,8 +7,8 @@ import { closingNextSeason } from "./survey-closing.ts";
 import { findSurvey } from "./surveys.server.ts";
 
 /**
- * Makes next season's draft of a survey: the same form as it is today, crops, brief and closing day, in those of its states
- * that the viewer holds. Pressed twice, it leads to the same draft while that is not opened.
+ * Makes next season's draft of a survey: the same form as it is today, crops, weighting, brief and closing day, in
+ * those of its states that the viewer holds. Pressed twice, it leads to the same draft while that is not opened.
  */
 export async function copySurvey(trx: Trx, viewer: Associate, surveyId: string) {
 	const survey = await findSurvey(trx, viewer, surveyId);
@@ -42,6 +42,7 @@ export async function copySurvey(trx: Trx, viewer: Associate, surveyId: string) 
 			closes_at: closingNextSeason(survey.closesAt, survey.timeZone, new Date()),
 			created_by: viewer.personId,
 			copied_from: surveyId,
+			weighting: survey.weighting,
 		})
 		.returning("survey_id")
 		.executeTakeFirstOrThrow();

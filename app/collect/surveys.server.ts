@@ -8,6 +8,7 @@ import type { Words } from "./form.ts";
 import { findFormToAsk } from "./forms.server.ts";
 import { momentIn } from "./survey-closing.ts";
 import type { ClosingForm, SurveyDraft } from "./survey-draft.schema.ts";
+import { Weighting } from "./weighting.ts";
 
 export type SurveyState = "draft" | "open" | "closed";
 export type Survey = Awaited<ReturnType<typeof listSurveys>>[number];
@@ -58,6 +59,7 @@ function selectSurveys(trx: Trx, viewer: Associate) {
 			"s.closed_at",
 			"s.archived_at",
 			"s.created_by",
+			"s.weighting",
 			sql<Words>`v.definition -> 'title'`.as("form_title"),
 			sql<number>`(v.definition ->> 'minutes')::int`.as("minutes"),
 			sql<
@@ -94,6 +96,7 @@ function toSurvey(row: SurveyRow, viewer: Associate) {
 		formTitle: row.form_title,
 		minutes: row.minutes,
 		cropKeys: row.crop_keys,
+		weighting: Weighting.parse(row.weighting),
 		stateFips: row.states,
 		/** States of the survey whose growers the viewer does not see. */
 		statesNotHeld,

@@ -1,6 +1,5 @@
 import { sql } from "kysely";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
-import { estimateSurvey } from "#app/estimate/survey.ts";
 import { log } from "#app/lib/log.server.ts";
 import { protect, type Protection, type ProtectionTable, type ProtectOptions } from "#app/protect/protect.ts";
 import { protectInThread } from "#app/protect/protect-thread.server.ts";
@@ -29,9 +28,7 @@ export async function computeReleaseDraft(
 ): Promise<void> {
 	const inputs = await transact({ kind: "network" }, (trx) => readInputs(trx, releaseDraftId), "repeatable read");
 	if (!inputs) return;
-	const { rules, method, tallies, frame, shares } = inputs;
-	const { steadyCv: steady, careCv: care, steadyDays, careDays } = rules;
-	const cutOffs = { steady, care, steadyDays, careDays };
+	const { method, shares } = inputs;
 	const started = performance.now();
 	const table = surveyTable({
 		areas: treeOf(method.areas),
@@ -44,13 +41,7 @@ export async function computeReleaseDraft(
 	const protection = await protectWatched(releaseDraftId, table, inputs, { transact, limits });
 	if (!protection) return;
 	const seconds = (performance.now() - started) / 1000;
-	const { estimates, joins } = estimateSurvey({
-		measures: method.measures,
-		frame,
-		tallies,
-		areasOfCounty: areasOfCounty(method.areas),
-		cutOffs,
-	});
+	const { estimates, joins, calibrations } = inputs.weighed;
 	const cells = assembleCells({ method, frameCells: inputs.frameCells, shares, protection, estimates });
 	const audit = ReleaseAudit.parse({
 		...protection.audit,
@@ -62,7 +53,7 @@ export async function computeReleaseDraft(
 		gap: protection.loss && gapOf(protection.loss),
 	});
 	await transact({ kind: "network" }, async (trx) => {
-		const written = await writeDraft(trx, releaseDraftId, { ...method, joins }, audit, cells);
+		const written = await writeDraft(trx, releaseDraftId, { ...method, joins, calibrations }, audit, cells);
 		if (written) await keepBasis(trx, releaseDraftId, inputs.holdings);
 	});
 	log.info({ releaseDraftId, cells: cells.length, passed: audit.passed, seconds }, "release drafted");
@@ -102,15 +93,6 @@ function whatIsPublic(table: ProtectionTable, { rules, method, earlier, holdings
 
 function treeOf(areas: ReleaseMethod["areas"]): { areaKey: string; parentKey: string }[] {
 	return areas.flatMap(({ areaKey, parentKey }) => (parentKey === null ? [] : [{ areaKey, parentKey }]));
-}
-
-function areasOfCounty(areas: ReleaseMethod["areas"]): Map<string, string[]> {
-	const parentOf = new Map(areas.map((area) => [area.areaKey, area.parentKey]));
-	const pathOf = (areaKey: string): string[] => {
-		const parent = parentOf.get(areaKey);
-		return parent ? [areaKey, ...pathOf(parent)] : [areaKey];
-	};
-	return new Map(areas.filter((area) => area.kind === "county").map((area) => [area.areaKey, pathOf(area.areaKey)]));
 }
 
 async function writeDraft(

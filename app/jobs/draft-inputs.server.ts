@@ -2,7 +2,10 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { baseQuantities, quantityOf } from "#app/collect/base-quantities.ts";
 import { FormDefinition } from "#app/collect/form.ts";
+import { Weighting } from "#app/collect/weighting.ts";
 import { listAreas } from "#app/directory/areas.server.ts";
+import type { WeighedEstimates } from "#app/estimate/calibration/weighed-survey.ts";
+import type { SteadinessCutOffs } from "#app/estimate/steadiness.ts";
 import { Words } from "#app/lib/words.ts";
 import { ALL_CROPS } from "#app/protect/codes.ts";
 import { listHoldings } from "#app/protect/holdings.server.ts";
@@ -13,15 +16,14 @@ import { cellKey } from "#app/protect/protect.ts";
 import type { Edition } from "#app/protect/revision.ts";
 import { type ReleaseMethod, ReleaseRules } from "#app/release/draft.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
-import type { FrameStratum, KeptTally } from "#app/tally/tally.ts";
 import { listEarlierEditions } from "./draft-basis.server.ts";
+import { estimateByWeights } from "./weighed-estimates.server.ts";
 import { type SensitiveMeasures, sensitiveMeasures } from "./sensitive-measures.ts";
 
 export type DraftInputs = {
 	rules: ReleaseRules;
-	method: Omit<ReleaseMethod, "joins">;
-	tallies: KeptTally[];
-	frame: (FrameStratum & { cropKey: string })[];
+	method: Omit<ReleaseMethod, "joins" | "calibrations">;
+	weighed: WeighedEstimates;
 	frameCells: ReadonlySet<string>;
 	baseKeys: string[];
 	sensitive: SensitiveMeasures;
@@ -45,6 +47,7 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 			"s.season",
 			"s.title",
 			"s.crop_keys",
+			"s.weighting",
 			"s.opened_at",
 			"s.closed_at",
 			"s.closes_at",
@@ -63,6 +66,9 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 	const tallies = await listTallies(trx, surveyId);
 	const surveyStates = new Set(states.map((state) => state.stateFips));
 	const areas = (await listReleasedAreas(trx, surveyId)) ?? (await listAreasOf(trx, surveyStates));
+	const measures = definition.measures.filter((measure) => !measure.base);
+	const frame = await listFrameStrata(trx, surveyId);
+	const weighting = Weighting.parse(row.weighting);
 	const total = (key: "asked" | "answered") => states.reduce((sum, state) => sum + state[key], 0);
 	return {
 		rules,
@@ -75,12 +81,21 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 			all: { asked: total("asked"), answered: total("answered") },
 			states,
 			setAside: tallies.reduce((sum, tally) => sum + tally.setAside, 0),
-			measures: definition.measures.filter((measure) => !measure.base),
+			weighting,
+			measures,
 			areas,
 			cropKeys: row.crop_keys,
 		},
-		tallies,
-		frame: await listFrameStrata(trx, surveyId),
+		weighed: await estimateByWeights(trx, {
+			surveyId,
+			weighting,
+			measures,
+			frame,
+			tallies,
+			areasOfCounty: areasOfCounty(areas),
+			districtOf: districtsOf(areas),
+			cutOffs: cutOffsOf(rules),
+		}),
 		frameCells: await listFrameCells(trx, surveyId),
 		baseKeys,
 		sensitive,
@@ -146,6 +161,19 @@ function districtsOf(areas: Areas): Map<string, string | null> {
 	return new Map(
 		counties.map(({ areaKey, parentKey }) => [areaKey, parentKey && districts.has(parentKey) ? parentKey : null]),
 	);
+}
+
+function areasOfCounty(areas: Areas): Map<string, string[]> {
+	const parentOf = new Map(areas.map((area) => [area.areaKey, area.parentKey]));
+	const pathOf = (areaKey: string): string[] => {
+		const parent = parentOf.get(areaKey);
+		return parent ? [areaKey, ...pathOf(parent)] : [areaKey];
+	};
+	return new Map(areas.filter((area) => area.kind === "county").map((area) => [area.areaKey, pathOf(area.areaKey)]));
+}
+
+function cutOffsOf({ steadyCv: steady, careCv: care, steadyDays, careDays }: ReleaseRules): SteadinessCutOffs {
+	return { steady, care, steadyDays, careDays };
 }
 
 /** Who was asked and who answered. Answers begun and never sent in are in no figure, so they count as none. */

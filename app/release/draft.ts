@@ -34,6 +34,28 @@ const ReleaseMeasure = z.object({
 	scale: z.number(),
 });
 
+/** The weights of a crop's answers in one state, or in some that share a stratum; for which measures alike. */
+const ReleaseCalibration = z.object({
+	measureKeys: z.array(z.string()),
+	cropKey: z.string(),
+	stateFips: z.array(z.string()),
+	respondents: z.number().int(),
+	totals: z.array(
+		z.object({ of: z.enum(["district", "stratum", "bearing_trees"]), group: z.string(), total: z.number() }),
+	),
+	takenTogether: z.array(z.string()),
+	sweeps: z.number().int().nullable(),
+	smallest: z.number(),
+	largest: z.number(),
+	/** Why design weights were kept. */
+	fallback: z
+		.enum([
+			...(["group_without_respondents", "group_without_total", "totals_differ", "totals_contradict"] as const),
+			...(["not_converged", "too_few", "extreme_weights", "zero_total"] as const),
+		])
+		.nullable(),
+});
+
 const Counted = z.object({ asked: z.number().int(), answered: z.number().int() });
 export const ReleaseMethod = z.object({
 	formKey: z.string(),
@@ -52,6 +74,10 @@ export const ReleaseMethod = z.object({
 			step: z.enum(["next_size", "state", "network"]),
 		}),
 	),
+	/** By which weights the figures were made; drafts made before there was a choice do not say. */
+	weighting: z.enum(["design", "post_stratified", "raked", "linear"]).default("design"),
+	/** How calibrated weights came about, for the desk alone: the totals are of parts of the frame. */
+	calibrations: z.array(ReleaseCalibration).default([]),
 	measures: z.array(ReleaseMeasure),
 	areas: z.array(
 		z.object({

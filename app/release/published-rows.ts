@@ -32,10 +32,11 @@ export function publishedRows({ measures }: Pick<ReleaseMethod, "measures">, cel
 
 /**
  * How a release was made, as far as it is told. How many answered stands only where the cell of all crops does: else a count
- * below the least would say why that cell is withheld. Joined strata are left out, since each had fewer than two answers.
+ * below the least would say why that cell is withheld. Joined strata are left out, since each had fewer than two answers; of
+ * calibrated weights only how far they went in all, since which state kept its own would tell where few answered.
  */
 export function publishedMethod(
-	{ measures: _m, areas: _a, joins: _j, ...method }: ReleaseMethod,
+	{ measures: _m, areas: _a, joins: _j, calibrations, ...method }: ReleaseMethod,
 	cells: readonly DraftCell[],
 ) {
 	const shown = new Set(
@@ -43,8 +44,19 @@ export function publishedMethod(
 	);
 	return {
 		...method,
+		...(calibrations.length > 0 && { calibration: calibrationInAll(calibrations) }),
 		all: shown.has("network") ? method.all : undefined,
 		states: method.states.filter(({ stateFips }) => shown.has(stateFips)),
+	};
+}
+
+function calibrationInAll(calibrations: ReleaseMethod["calibrations"]) {
+	return {
+		parts: calibrations.length,
+		designKept: calibrations.filter(({ fallback }) => fallback !== null).length,
+		mostSweeps: Math.max(...calibrations.map(({ sweeps }) => sweeps ?? 0)),
+		smallest: Math.min(...calibrations.map(({ smallest }) => smallest)),
+		largest: Math.max(...calibrations.map(({ largest }) => largest)),
 	};
 }
 

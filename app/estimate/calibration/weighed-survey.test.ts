@@ -4,7 +4,7 @@ import { calibratedEstimate } from "#app/estimate/calibration/estimate.ts";
 import { calibrateLinear } from "#app/estimate/calibration/linear.ts";
 import { weighedFigure } from "#app/estimate/calibration/weighed-figure.ts";
 import { estimateWeighed, gatherCalibrations } from "#app/estimate/calibration/weighed-survey.ts";
-import { type Weighting, weightings } from "#app/estimate/calibration/weighting.ts";
+import { type Weighting, weightings } from "#app/collect/weighting.ts";
 import { estimateSurvey } from "#app/estimate/survey.ts";
 import { groupBy } from "#app/lib/group-by.ts";
 import { tallyOf, type ToldAnswer } from "#app/tally/tally.ts";

@@ -1,13 +1,6 @@
 import type { CalibrationProblem } from "#app/estimate/calibration/calibration.ts";
 
-/**
- * What a survey's answers are weighted by. `design`: each stands for the operations of its stratum, N_h / n_h. The others set
- * out from that and meet more of what is known of the frame: `post_stratified` how many operations each district has; `raked`
- * that and how many each stratum has; `linear` how many each stratum has and the bearing trees of the crop in each state.
- * Counts by stratum alone are no choice of their own: design weights meet them already.
- */
-export const weightings = ["design", "post_stratified", "raked", "linear"] as const;
-export type Weighting = (typeof weightings)[number];
+export type { Weighting } from "#app/collect/weighting.ts";
 
 /**
  * Where calibration stops. A weight may become three times or a third of what it was; a district needs five answers to be
