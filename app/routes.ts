@@ -135,6 +135,7 @@ export default [
 					route("coding", "routes/desk/coding.tsx"),
 					route("estimates", "routes/desk/estimates.tsx"),
 					route("estimates/compared", "routes/desk/estimates-compared.tsx"),
+					route("estimates/weighting", "routes/desk/estimates-weighting.tsx"),
 					route("estimates/:areaKey/:cropKey/:measureKey", "routes/desk/estimate.tsx"),
 					route("release", "routes/desk/release.tsx"),
 				]),

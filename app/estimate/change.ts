@@ -45,11 +45,14 @@ export type Change = {
  */
 export function changeEstimate(kind: EstimateKind, strata: readonly TwoSeasonStratum[]): Change {
 	const [before, now] = [seasonOf(kind, present(strata, "before")), seasonOf(kind, present(strata, "now"))];
-	const change: Change = { before: before?.figure ?? null, now: now?.figure ?? null, ...noChange };
-	if (!before || !now) return change;
+	const covariance = before && now ? linearizedCovariance(strata, before.linearized, now.linearized) : 0;
+	return differenceOf(before?.figure ?? null, now?.figure ?? null, covariance);
+}
 
-	const [first, second] = [before.figure, now.figure];
-	const covariance = linearizedCovariance(strata, before.linearized, now.linearized);
+/** The difference of two seasons' figures that move together by a covariance. */
+export function differenceOf(first: Figure | null, second: Figure | null, covariance: number): Change {
+	const change: Change = { before: bareFigure(first), now: bareFigure(second), ...noChange };
+	if (!first || !second) return change;
 	const [variance1, variance2] = [first.standardError ** 2, second.standardError ** 2];
 	const difference = uncertain(second.value - first.value, variance1 + variance2 - 2 * covariance);
 	if (first.value === 0) return { ...change, covariance, difference };
@@ -114,13 +117,16 @@ export type CellChange = {
  * either season, since one answer has no spread to judge by. `missing` says why something is null.
  */
 export function changeOfCell(kind: EstimateKind, strata: readonly TwoSeasonStratum[]): CellChange {
-	const respondents = {
+	return toldChange(changeEstimate(kind, strata), {
 		before: domainTotals(present(strata, "before")).respondents,
 		now: domainTotals(present(strata, "now")).respondents,
 		both: strata.reduce((sum, { both }) => sum + both.domain.n, 0),
-	};
+	});
+}
+
+/** A change as it may be shown, by how many answered in the area. */
+export function toldChange(change: Change, respondents: CellChange["respondents"]): CellChange {
 	const fewest = Math.min(respondents.before, respondents.now);
-	const change = changeEstimate(kind, strata);
 	const cell = { change, interval: null, respondents };
 	if (fewest === 0) return { ...cell, missing: "no_respondents" };
 	if (fewest === 1) return { ...cell, change: withoutErrors(change), missing: "one_respondent" };
@@ -129,6 +135,8 @@ export function changeOfCell(kind: EstimateKind, strata: readonly TwoSeasonStrat
 	if (standardError === null) return { ...cell, missing: "too_few" };
 	return { ...cell, interval: normalInterval({ value, standardError }), missing: null };
 }
+
+const bareFigure = (figure: Figure | null) => figure && { value: figure.value, standardError: figure.standardError };
 
 const bare = (figure: UncertainFigure | null) => figure && { ...figure, standardError: null };
 

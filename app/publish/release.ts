@@ -21,6 +21,16 @@ const Method = z
 		all: Counted,
 		states: z.array(Counted.extend({ stateFips: z.string() })),
 		setAside: z.number(),
+		/** By which weights the figures were made; releases before there was a choice do not say. */
+		weighting: z.enum(["design", "post_stratified", "raked", "linear"]),
+		/** How far calibrated weights went, over all crops, states and measures. */
+		calibration: z.object({
+			parts: z.number(),
+			designKept: z.number(),
+			mostSweeps: z.number(),
+			smallest: z.number(),
+			largest: z.number(),
+		}),
 	})
 	.partial();
 

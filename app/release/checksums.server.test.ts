@@ -51,6 +51,7 @@ const method = {
 		{ ...counted, stateFips: "55" },
 	],
 	joins: [{ measureKey: "crop_loss", cropKey: "apple", stratumKeys: ["19.small"], step: "state" }],
+	calibrations: [],
 	measures,
 	areas: [],
 } as unknown as ReleaseMethod;
@@ -65,6 +66,18 @@ test("how many answered is told only where the cell of all crops is shown, and j
 	]);
 	expect(told).toEqual({ season: 2031, all: method.all, states: [{ ...counted, stateFips: "55" }] });
 	expect(publishedMethod(method, [ofAll("network", "withheld")])).toEqual({ season: 2031, states: [] });
+});
+
+test("of calibrated weights a release tells how far they went in all, and no total of a part of the frame", () => {
+	const one = { measureKeys: ["crop_loss"], cropKey: "apple", stateFips: ["19"], respondents: 40, takenTogether: [] };
+	const totals = [{ of: "district" as const, group: "test-east", total: 71, byDesign: 68 }];
+	const calibrations: ReleaseMethod["calibrations"] = [
+		{ ...one, totals, sweeps: 7, smallest: 0.8, largest: 1.4, fallback: null },
+		{ ...one, totals, stateFips: ["55"], sweeps: null, smallest: 1, largest: 1, fallback: "too_few" },
+	];
+	const told = publishedMethod({ ...method, weighting: "raked", calibrations }, []);
+	const calibration = { parts: 2, designKept: 1, mostSweeps: 7, smallest: 0.8, largest: 1.4 };
+	expect(told).toEqual({ season: 2031, weighting: "raked", calibration, states: [] });
 });
 
 test("a release tells how much is withheld, and not for which reason", () => {

@@ -22,7 +22,10 @@ export type DraftRow = {
 };
 export type DraftView = {
 	draft: Omit<Draft, "method"> & {
-		method: Pick<ReleaseMethod, "all" | "states" | "joins" | "setAside" | "closedAt"> | null;
+		method: Pick<
+			ReleaseMethod,
+			"all" | "states" | "joins" | "setAside" | "closedAt" | "weighting" | "calibrations"
+		> | null;
 	};
 	measures: ReleaseMethod["measures"];
 	cropKeys: string[];
@@ -55,9 +58,9 @@ export async function viewDraft(trx: Trx, draft: Draft, choice: DraftChoice): Pr
 				},
 			];
 		});
-	const { all, states, joins, setAside, closedAt } = method;
+	const { all, states, joins, setAside, closedAt, weighting, calibrations } = method;
 	return {
-		draft: { ...draft, method: { all, states, joins, setAside, closedAt } },
+		draft: { ...draft, method: { all, states, joins, setAside, closedAt, weighting, calibrations } },
 		measures: method.measures.filter((measure) => choice.crop !== "all" || measure.acrossCrops),
 		cropKeys: method.cropKeys,
 		counts: countStatuses(cells, new Map(method.areas.map((area) => [area.areaKey, area.kind]))),

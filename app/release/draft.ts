@@ -41,7 +41,12 @@ const ReleaseCalibration = z.object({
 	stateFips: z.array(z.string()),
 	respondents: z.number().int(),
 	totals: z.array(
-		z.object({ of: z.enum(["district", "stratum", "bearing_trees"]), group: z.string(), total: z.number() }),
+		z.object({
+			of: z.enum(["district", "stratum", "bearing_trees"]),
+			group: z.string(),
+			total: z.number(),
+			byDesign: z.number(),
+		}),
 	),
 	takenTogether: z.array(z.string()),
 	sweeps: z.number().int().nullable(),

@@ -46,3 +46,18 @@ export async function listToldAnswers(
 		order by f.crop_key, f.operation_id`.execute(trx);
 	return rows;
 }
+
+/** The bearing trees that a survey's frame has of one operation, of a crop or of `all`. */
+export async function findFrameTrees(
+	trx: Transaction<DB>,
+	{ surveyId, operationId, cropKey }: { surveyId: string; operationId: string; cropKey: string },
+): Promise<number> {
+	const row = await trx
+		.selectFrom("collect.frame_crop")
+		.where("survey_id", "=", surveyId)
+		.where("operation_id", "=", operationId)
+		.$if(cropKey !== "all", (rows) => rows.where("crop_key", "=", cropKey))
+		.select(sql<number>`coalesce(sum(bearing_trees), 0)::float8`.as("trees"))
+		.executeTakeFirstOrThrow();
+	return row.trees;
+}

@@ -203,6 +203,7 @@ export const afterFreeze: FormDefinition = {
 			scale: 100,
 			acrossCrops: true,
 			base: false,
+			protects: ["killed_trees", "bearing_trees"],
 		},
 		{
 			key: "protected",

@@ -44,6 +44,7 @@ export const afterHarvestMeasures: Measure[] = [
 		scale: 100,
 		acrossCrops: true,
 		base: false,
+		protects: ["normal_crop_lb", "harvested_lb"],
 	},
 	{
 		key: "freeze_loss",
@@ -68,6 +69,7 @@ export const afterHarvestMeasures: Measure[] = [
 		scale: 100,
 		acrossCrops: true,
 		base: false,
+		protects: ["normal_crop_lb", "harvested_lb"],
 	},
 	{
 		key: "total_loss",
@@ -111,6 +113,7 @@ export const afterHarvestMeasures: Measure[] = [
 		scale: 1,
 		acrossCrops: false,
 		base: false,
+		protects: ["harvested_lb", "bearing_trees"],
 	},
 	...harvestDays.map(({ key, label, description }): Measure => ({
 		key,

@@ -143,6 +143,7 @@ export const bloomWatch: FormDefinition = {
 			scale: 100,
 			acrossCrops: true,
 			base: false,
+			protects: ["light_bloom_trees", "bearing_trees"],
 		},
 		{
 			key: "poor_bee_weather",

@@ -162,6 +162,7 @@ function measuresOf(pest: Pest): Measure[] {
 			},
 			numerator: { terms: [{ known: "bearing_trees", times: 1, share: `${key}_trees` }] },
 			denominator: knownTrees,
+			protects: ["bearing_trees"],
 		},
 		{
 			...shared,
@@ -177,6 +178,7 @@ function measuresOf(pest: Pest): Measure[] {
 			// A score is counted like a percent, so a hundred times of it is the score itself.
 			numerator: { terms: [{ known: "bearing_trees", times: 100, share: `${key}_severity` }] },
 			denominator: knownTrees,
+			protects: ["bearing_trees"],
 			scale: 1,
 		},
 		{

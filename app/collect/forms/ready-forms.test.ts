@@ -1,7 +1,8 @@
 import { describe, expect, test } from "vitest";
 import { cropKeys } from "#app/directory/crops.ts";
 import { checksOf } from "#app/collect/checks.ts";
-import { FormDefinition, type Question } from "#app/collect/form.ts";
+import { quantityOf } from "#app/collect/base-quantities.ts";
+import { FormDefinition, type Measure, type Question } from "#app/collect/form.ts";
 import { listAsked, type PlantingAsked } from "#app/collect/steps.ts";
 import { pests as pestList } from "./pest-list.ts";
 import { readyFormKeys, readyForms } from "./ready-forms.ts";
@@ -70,6 +71,30 @@ describe.each(forms)("the form %s", (_key, form) => {
 		expect(base.map(({ key }) => key)).toContain("base.bearing_trees");
 		expect(form.measures.length).toBeGreaterThan(base.length);
 	});
+});
+
+/** The quantities by which answers are summed in a measure, before any share of them is taken. */
+function amountsOf({ numerator, denominator }: Measure): string[] {
+	const terms = [numerator, denominator].flatMap((quantity) => (quantity && "terms" in quantity ? quantity.terms : []));
+	return terms.map((term) => ("question" in term ? term.question : term.known));
+}
+
+test.each(forms)("each figure of the form %s names the base quantities that its sums are of", (_key, form) => {
+	const bases = form.measures.filter(({ base }) => base);
+	// A base of one plain amount is that amount's; one with a share is its own, for measures with the same numerator.
+	const plain = new Map(
+		bases.flatMap((base) => {
+			const isPlain = "terms" in base.numerator && base.numerator.terms.every(({ share }) => share === undefined);
+			return isPlain ? [[amountsOf(base).join("+"), quantityOf(base.key)] as const] : [];
+		}),
+	);
+	for (const measure of form.measures.filter(({ base }) => !base)) {
+		const same = bases.filter(({ numerator }) => JSON.stringify(numerator) === JSON.stringify(measure.numerator));
+		// Nothing that growers hold in different amounts is summed without a quantity that the table guards.
+		const guarded = amountsOf(measure).map((amount) => plain.get(amount) ?? `nothing guards ${amount}`);
+		const made = new Set([...guarded, ...same.map(({ key }) => quantityOf(key))]);
+		expect([...(measure.protects ?? [])].toSorted(), measure.key).toEqual([...made].toSorted());
+	}
 });
 
 test("each crop has pests of its own to tell of, and each pest is asked about where it is offered", () => {

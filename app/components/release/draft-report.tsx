@@ -7,9 +7,12 @@ import { DescriptionList } from "#app/components/description-list.tsx";
 import { Figure } from "#app/components/figure.tsx";
 import { Section } from "#app/components/section.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
+import type { Weighting } from "#app/collect/weighting.ts";
+import type { MeasureCalibration } from "#app/estimate/calibration/weighed-survey.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { FigureShape } from "#app/lib/format.ts";
+import { CalibrationTable } from "./calibration-table.tsx";
 import { AuditTables, type AuditTablesProps } from "./audit-tables.tsx";
 
 type Words = { en: string; es: string };
@@ -45,6 +48,8 @@ export type DraftReportProps = {
 	asked: number;
 	answered: number;
 	setAside: number;
+	weighting: Weighting;
+	calibrations: MeasureCalibration[];
 	joinCount: number;
 	checksum: string | null;
 	counts: { kind: string; shown: number; withheld: number; noGrowers: number }[];
@@ -57,6 +62,7 @@ export type DraftReportProps = {
 /** A draft as its reviewers read it: the audit, how much is withheld, and the figures that would be published. */
 export function DraftReport(props: DraftReportProps) {
 	const { t } = useTranslation("release");
+	const calibrations = props.calibrations.filter(({ cropKey }) => cropKey === props.choice.crop);
 	return (
 		<>
 			<Section title={t("audit.title")}>
@@ -70,11 +76,17 @@ export function DraftReport(props: DraftReportProps) {
 				<CellFilter cropKeys={props.cropKeys} choice={props.choice} />
 				<CellTable {...props} />
 			</Section>
+			{calibrations.length > 0 && (
+				<Section title={t("weighting.how.title")}>
+					<p className="mb-4 max-w-prose">{t("weighting.how.body")}</p>
+					<CalibrationTable calibrations={calibrations} measures={props.measures} />
+				</Section>
+			)}
 		</>
 	);
 }
 
-function AuditFacts({ audit, rules, asked, answered, setAside, joinCount, checksum }: DraftReportProps) {
+function AuditFacts({ audit, rules, asked, answered, setAside, joinCount, checksum, ...props }: DraftReportProps) {
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	const room = audit.narrowest;
@@ -138,11 +150,26 @@ function AuditFacts({ audit, rules, asked, answered, setAside, joinCount, checks
 					}),
 				},
 				{ term: t("audit.setAside"), detail: format.number(setAside) },
+				{ term: t("audit.weights"), detail: useWeights(props) },
 				{ term: t("audit.joins"), detail: format.number(joinCount) },
 				{ term: t("audit.checksum"), detail: <code className="text-xs">{checksum ?? ""}</code> },
 			]}
 		/>
 	);
+}
+
+function useWeights({ weighting, calibrations }: Pick<DraftReportProps, "weighting" | "calibrations">): string {
+	const { t } = useTranslation("release");
+	const format = useFormat();
+	const name = t(`weighting.choice.${weighting}.name`);
+	if (calibrations.length === 0) return name;
+	return t("audit.weightsFitted", {
+		name,
+		smallest: format.number(Math.min(...calibrations.map(({ smallest }) => smallest)), 2),
+		largest: format.number(Math.max(...calibrations.map(({ largest }) => largest)), 2),
+		fitted: format.number(calibrations.filter(({ fallback }) => fallback === null).length),
+		parts: format.number(calibrations.length),
+	});
 }
 
 function CountTable({ counts }: Pick<DraftReportProps, "counts">) {

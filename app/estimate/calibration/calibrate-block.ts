@@ -83,7 +83,7 @@ const aims: Record<Exclude<Weighting, "design">, (part: BlockPart) => Aim> = {
 	post_stratified: (part) => {
 		const { margin, takenTogether } = districtMargin(part);
 		return {
-			totals: totalsOf("district", margin),
+			totals: totalsOf("district", margin, part),
 			takenTogether,
 			calibrate: () => postStratify(part.sample, margin),
 		};
@@ -92,7 +92,7 @@ const aims: Record<Exclude<Weighting, "design">, (part: BlockPart) => Aim> = {
 		const { margin, takenTogether } = districtMargin(part);
 		const strata = stratumMargin(part);
 		return {
-			totals: [...totalsOf("district", margin), ...totalsOf("stratum", strata)],
+			totals: [...totalsOf("district", margin, part), ...totalsOf("stratum", strata, part)],
 			takenTogether,
 			calibrate: () => rake(part.sample, [margin, strata]),
 		};
@@ -106,7 +106,10 @@ const aims: Record<Exclude<Weighting, "design">, (part: BlockPart) => Aim> = {
 			total,
 		};
 		return {
-			totals: [...totalsOf("stratum", strata), { of: "bearing_trees", group: part.stateFips.join("+"), total }],
+			totals: [
+				...totalsOf("stratum", strata, part),
+				{ of: "bearing_trees", group: part.stateFips.join("+"), total, byDesign: weighted(part, trees.values) },
+			],
 			takenTogether: [],
 			calibrate: () => calibrateLinear(part.sample, [...indicatorsOf(strata), trees]),
 		};
@@ -140,6 +143,15 @@ function stratumMargin({ strata, sample }: BlockPart): Margin {
 	};
 }
 
-function totalsOf(of: KnownTotal["of"], { totals }: Margin): KnownTotal[] {
-	return [...totals].map(([group, total]) => ({ of, group, total }));
+function totalsOf(of: KnownTotal["of"], margin: Margin, part: BlockPart): KnownTotal[] {
+	return indicatorsOf(margin).map(({ values, total }, at) => ({
+		of,
+		group: [...margin.totals.keys()][at]!,
+		total,
+		byDesign: weighted(part, values),
+	}));
+}
+
+function weighted({ sample }: BlockPart, values: readonly number[]): number {
+	return sample.operations.reduce((sum, { weight }, i) => sum + weight * values[i]!, 0);
 }

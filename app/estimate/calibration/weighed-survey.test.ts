@@ -2,10 +2,14 @@ import { describe, expect, test } from "vitest";
 import { type WeighingInput, weighAnswers } from "#app/estimate/calibration/blocks.ts";
 import { calibratedEstimate } from "#app/estimate/calibration/estimate.ts";
 import { calibrateLinear } from "#app/estimate/calibration/linear.ts";
+import { changeOfWeighed } from "#app/estimate/calibration/weighed-change.ts";
 import { weighedFigure } from "#app/estimate/calibration/weighed-figure.ts";
 import { estimateWeighed, gatherCalibrations } from "#app/estimate/calibration/weighed-survey.ts";
 import { type Weighting, weightings } from "#app/collect/weighting.ts";
 import { estimateSurvey } from "#app/estimate/survey.ts";
+import { changeOfCell } from "#app/estimate/change.ts";
+import { joinSeasons, twoSeasonStrata } from "#app/estimate/two-seasons.ts";
+import { pairedMomentsOf } from "#app/lib/paired-moments.ts";
 import { groupBy } from "#app/lib/group-by.ts";
 import { tallyOf, type ToldAnswer } from "#app/tally/tally.ts";
 
@@ -306,6 +310,62 @@ describe("a survey by calibrated weights", () => {
 		);
 		expect(strata.joins.map(({ step }) => step)).toContain("network");
 		expect(blocks.map(({ note }) => note.stateFips)).toEqual([["A", "B"]]);
+	});
+
+	test("changes between seasons as tallies say it by design weights", () => {
+		const { units, answers: now } = surveyOf(41);
+		const draw = drawing(43);
+		const before = now
+			.filter(() => draw() < 0.7)
+			.map((answer) => ({ ...answer, y: answer.y * (0.5 + draw()), x: answer.x * (0.9 + 0.2 * draw()) }));
+		const isInside = (county: string) => areasOfCounty.get(county)!.includes("A");
+		const frame = inputOf(units, now, "design").frame;
+		const onBoth = new Map(frame.map(({ stratumKey, frameSize }) => [stratumKey, frameSize]));
+		const season = (answers: ToldAnswer[], weighting: Weighting) => ({
+			weighed: weighAnswers(inputOf(units, answers, weighting)),
+			frame,
+		});
+		const change = (weighting: Weighting) =>
+			changeOfWeighed("ratio", season(before, weighting), season(now, weighting), isInside, onBoth);
+		const inStrata = (answers: ToldAnswer[]) => groupBy(answers, ({ stratumKey }) => stratumKey);
+		const tallied = (answers: ToldAnswer[]) =>
+			[...inStrata(answers)].map(([stratumKey, own]) => ({ stratumKey, ...tallyOf(own) }));
+		const nowOf = new Map(now.map((answer) => [answer.operationId, answer]));
+		const pairs = [...inStrata(before.filter(({ countyFips }) => isInside(countyFips)))].map(([stratumKey, own]) => ({
+			stratumKey,
+			...pairedMomentsOf(
+				own.map(({ operationId, y, x }) => {
+					const later = nowOf.get(operationId)!;
+					return { yBefore: y, xBefore: x, yNow: later.y, xNow: later.x };
+				}),
+			),
+		}));
+		const counts = (answers: ToldAnswer[]) =>
+			new Map([...inStrata(answers)].map(([stratumKey, own]) => [stratumKey, own.length]));
+		const joined = joinSeasons(
+			{ frame, respondents: counts(before) },
+			{ frame, respondents: counts(now) },
+			{ frame: onBoth, respondents: counts(before) },
+		);
+		const inside = (answers: ToldAnswer[]) => tallied(answers.filter(({ countyFips }) => isInside(countyFips)));
+		const kept = changeOfCell(
+			"ratio",
+			twoSeasonStrata(joined, { before: inside(before), now: inside(now), both: pairs }),
+		);
+		const design = change("design");
+		expect(design.respondents).toEqual(kept.respondents);
+		expect(design.change.difference!.value).toBeCloseTo(kept.change.difference!.value, 12);
+		expect(design.change.difference!.standardError).toBeCloseTo(kept.change.difference!.standardError!, 12);
+		expect(design.change.covariance).toBeCloseTo(kept.change.covariance!, 14);
+
+		const linear = change("linear");
+		const told = weighedFigure(
+			"ratio",
+			season(now, "linear").weighed,
+			now.flatMap((one, i) => (isInside(one.countyFips) ? [i] : [])),
+		);
+		expect(linear.change.now).toEqual({ value: told!.value, standardError: told!.standardError });
+		expect(linear.change.covariance).toBeGreaterThan(0);
 	});
 
 	test("is told once for measures with the same answers", () => {

@@ -17,8 +17,14 @@ export const calibrationLimits = Object.freeze({
 /** Why design weights were kept: what `CalibrationProblem` says, too few answers, weights too far off, or nothing known. */
 export type Fallback = CalibrationProblem | "too_few" | "extreme_weights" | "zero_total";
 
-/** A total over the frame that weights were to meet. `group` is a district's key or `rest`, strata joined by +, or states. */
-export type KnownTotal = { of: "district" | "stratum" | "bearing_trees"; group: string; total: number };
+/** A total over the frame's strata in which not everybody answered, for weights to meet. `group` is a district's key or `rest`, strata joined by +, or states. */
+export type KnownTotal = {
+	of: "district" | "stratum" | "bearing_trees";
+	group: string;
+	total: number;
+	/** What design weights make of it. */
+	byDesign: number;
+};
 
 /** How the weights of one state came about, or of the states that share a stratum. */
 export type CalibrationNote = {

@@ -7,6 +7,7 @@ import { useAreaName } from "#app/components/map/area-name.ts";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
+import { FigureCalibration } from "./parts/estimates/figure-calibration.tsx";
 import { FigureFacts, FigureFormula } from "./parts/estimates/figure-facts.tsx";
 import { requireFigureOrigin } from "./parts/estimates/figure-origin.server.ts";
 import { FigureResponse } from "./parts/estimates/figure-response.tsx";
@@ -59,6 +60,7 @@ export default function Estimate({ loaderData, params }: Route.ComponentProps) {
 			<FigureSeasonsPart seasons={loaderData.seasons} measure={measure} place={params} />
 			<FigureFormula told={loaderData} />
 			<FigureStrata told={loaderData} />
+			<FigureCalibration told={loaderData} />
 			<FigureResponse told={loaderData} />
 		</>
 	);

@@ -21,7 +21,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 
 /** Draft figures of the viewer's states, made afresh from the answers so far. */
 export default function Estimates({ loaderData, params }: Route.ComponentProps) {
-	const { statesNotHeld, isClosed, page, pageCount, total } = loaderData;
+	const { statesNotHeld, isClosed, weighting, designKept, page, pageCount, total } = loaderData;
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	const others = statesNotHeld.map((state) => t(`common:state.${state}`));
@@ -41,6 +41,16 @@ export default function Estimates({ loaderData, params }: Route.ComponentProps) 
 					</Link>
 				</p>
 			)}
+			<p className="mb-4 max-w-prose">
+				{t("weighting.ofTable", { name: t(`weighting.choice.${weighting}.name`) })}{" "}
+				{designKept > 0 && `${t("weighting.keptIn", { count: designKept, value: format.number(designKept) })} `}
+				<Link
+					to={href("/desk/surveys/:surveyId/estimates/weighting", params)}
+					className="inline-flex min-h-11 items-center"
+				>
+					{t("weighting.toChoice")}
+				</Link>
+			</p>
 			<EstimateFilters {...loaderData} />
 			<EstimateTable {...loaderData} surveyId={params.surveyId} />
 			{total > 0 && <Paging page={page} pageCount={pageCount} total={total} />}

@@ -18,7 +18,7 @@ function useSettings({ latest }: Route.ComponentProps["loaderData"]) {
 	const format = useFormat();
 	const { minimumOwners, dominancePercent, steadyCv, careCv, steadyDays, careDays } = latest?.rules ?? {};
 	const percent = (fraction: number) => format.quantity(fraction * 100, "percent");
-	const all = latest?.method.all;
+	const { all, weighting } = latest?.method ?? {};
 	return {
 		minimum: minimumOwners
 			? t("methods.private.minimum", { count: minimumOwners, value: format.number(minimumOwners) })
@@ -34,6 +34,7 @@ function useSettings({ latest }: Route.ComponentProps["loaderData"]) {
 						care: format.quantity(careDays, "days"),
 					})
 				: "",
+		weighed: weighting && weighting !== "design" ? t(`methods.weighed.by.${weighting}`) : "",
 		answered: all
 			? t("methods.asked.latest", {
 					answered: format.number(all.answered),
@@ -54,7 +55,8 @@ export default function Methods({ loaderData }: Route.ComponentProps) {
 				<Text lines={[t("methods.asked.who"), t("methods.asked.when"), settings.answered]} />
 			</Section>
 			<Section title={t("methods.weighed.title")} id="weighed">
-				<Text lines={[t("methods.weighed.plain"), t("methods.weighed.ratio"), t("methods.weighed.missing")]} />
+				<Text lines={[t("methods.weighed.plain"), settings.weighed, t("methods.weighed.ratio")]} />
+				<Text lines={[t("methods.weighed.missing")]} />
 			</Section>
 			<Section title={t("methods.sure.title")} id="sure">
 				<Text lines={[t("methods.sure.plain"), t("methods.sure.words"), settings.cutOffs, settings.dayCutOffs]} />
@@ -69,7 +71,8 @@ export default function Methods({ loaderData }: Route.ComponentProps) {
 				</p>
 			</Section>
 			<Section title={t("methods.detail.title")} id="detail">
-				<Text lines={[t("methods.detail.design"), t("methods.detail.estimator"), t("methods.detail.variance")]} />
+				<Text lines={[t("methods.detail.design"), t("methods.detail.calibrated")]} />
+				<Text lines={[t("methods.detail.estimator"), t("methods.detail.variance")]} />
 				<Text lines={[t("methods.detail.joined"), t("methods.detail.protection"), t("methods.detail.audit")]} />
 				{latest && (
 					<p>

@@ -1,6 +1,6 @@
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { estimateSurvey } from "#app/estimate/survey.ts";
+import { estimateByWeights } from "#app/jobs/weighed-estimates.server.ts";
 import { findLatestDraft, listDraftCells } from "#app/release/drafts.server.ts";
 import { compareFigures, type ComparedRow } from "./compared-rows.ts";
 import { measuresOf, readDraftInputs } from "./draft-estimates.server.ts";
@@ -15,7 +15,7 @@ import type { ComparedQuery } from "./estimates.schema.ts";
 export async function listComparedEstimates(trx: Trx, viewer: Associate, surveyId: string, asked: ComparedQuery) {
 	const inputs = await readDraftInputs(trx, viewer, surveyId);
 	if (!inputs) return undefined;
-	const { survey, frame, areasOfCounty } = inputs;
+	const { survey } = inputs;
 	const crops = [...(inputs.measures.some((measure) => measure.acrossCrops) ? ["all"] : []), ...survey.cropKeys];
 	const query = { ...asked, crop: crops.includes(asked.crop) ? asked.crop : (crops[0] ?? "all") };
 	const draft = await findLatestDraft(trx, viewer, surveyId);
@@ -23,7 +23,7 @@ export async function listComparedEstimates(trx: Trx, viewer: Associate, surveyI
 	const measures = measuresOf(inputs, query.crop);
 	const areas = inputs.areas.filter((area) => area.kind !== "region" || survey.statesNotHeld.length === 0);
 	const tallies = inputs.tallies.filter((tally) => tally.cropKey === query.crop);
-	const { estimates } = estimateSurvey({ measures, frame, tallies, areasOfCounty });
+	const { estimates } = await estimateByWeights(trx, { ...inputs, measures, tallies });
 	const keys = measures.map(({ key }) => key);
 	const ofCrop = cells.filter((cell) => cell.cropKey === query.crop);
 	const rows = compareFigures(areas, keys, ofCrop, estimates);

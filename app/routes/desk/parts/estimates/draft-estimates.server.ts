@@ -4,7 +4,8 @@ import type { Measure } from "#app/collect/form.ts";
 import { findSurveyForm } from "#app/collect/forms.server.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { type Area, listAreas, regionKey } from "#app/directory/areas.server.ts";
-import { type AreasOfCounty, estimateSurvey } from "#app/estimate/survey.ts";
+import type { AreasOfCounty } from "#app/estimate/survey.ts";
+import { estimateByWeights } from "#app/jobs/weighed-estimates.server.ts";
 import { groupBy } from "#app/lib/group-by.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
 import { barScales, chooseRows, pageOf, sortRows } from "./estimate-rows.ts";
@@ -24,10 +25,13 @@ export async function readDraftInputs(trx: Trx, viewer: Associate, surveyId: str
 	const region: Area = { key: regionKey, kind: "region", parentKey: null, stateFips: null, name: "", label: "" };
 	return {
 		survey,
+		surveyId,
+		weighting: survey.weighting,
 		held,
 		measures: definition.measures.filter((measure) => !measure.base),
 		areas: held.length > 1 ? [region, ...inTreeOrder(branches)] : inTreeOrder(branches),
 		areasOfCounty: pathsOfCounties(branches),
+		districtOf: districtsOfCounties(branches),
 		frame: await listFrameStrata(trx, surveyId),
 		tallies: await listTallies(trx, surveyId),
 	};
@@ -45,13 +49,13 @@ export function measuresOf(inputs: Pick<DraftInputs, "measures">, cropKey: strin
 export async function listDraftEstimates(trx: Trx, viewer: Associate, surveyId: string, asked: EstimatesQuery) {
 	const inputs = await readDraftInputs(trx, viewer, surveyId);
 	if (!inputs) return undefined;
-	const { survey, held, areas, frame, areasOfCounty } = inputs;
+	const { survey, held, areas } = inputs;
 	const crops = [...(inputs.measures.some((measure) => measure.acrossCrops) ? ["all"] : []), ...survey.cropKeys];
 	const query = settle(asked, inputs, crops);
 	const choices = measuresOf(inputs, query.crop);
 	const measures = choices.filter((measure) => query.measure === "all" || measure.key === query.measure);
 	const tallies = inputs.tallies.filter((tally) => tally.cropKey === query.crop);
-	const { estimates } = estimateSurvey({ measures, frame, tallies, areasOfCounty });
+	const { estimates, calibrations } = await estimateByWeights(trx, { ...inputs, measures, tallies });
 	const rows = chooseRows(areas, estimates, query);
 	return {
 		query,
@@ -60,6 +64,8 @@ export async function listDraftEstimates(trx: Trx, viewer: Associate, surveyId: 
 		measureChoices: choices.map(({ key, label }) => ({ key, label })),
 		measures: measures.map(({ key, label, unit, decimals }) => ({ key, label, unit, decimals, season: survey.season })),
 		scales: barScales(rows, measures),
+		weighting: survey.weighting,
+		designKept: calibrations.filter(({ fallback }) => fallback !== null).length,
 		statesNotHeld: survey.statesNotHeld,
 		isClosed: survey.state === "closed",
 		anyAnswer: inputs.tallies.some((tally) => tally.n > 0),
@@ -96,4 +102,10 @@ function pathsOfCounties(areas: readonly Area[]): AreasOfCounty {
 		return parent ? [key, ...pathOf(parent)] : [key];
 	};
 	return new Map(areas.filter((area) => area.kind === "county").map((area) => [area.key, pathOf(area.key)]));
+}
+
+/** A county's district is the area right above it, where that is no state. */
+function districtsOfCounties(areas: readonly Area[]): Map<string, string | null> {
+	const counties = areas.filter((area) => area.kind === "county");
+	return new Map(counties.map(({ key, parentKey, stateFips }) => [key, parentKey === stateFips ? null : parentKey]));
 }

@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { weightings } from "#app/collect/weighting.ts";
 
 /** The levels of the area tree that the table can be narrowed to. */
 export const areaLevels = ["all", "region", "state", "district", "county"] as const;
@@ -21,6 +22,17 @@ export const EstimatesQuery = z.object({
 	page: z.coerce.number().int().min(1).max(100_000).catch(1),
 });
 export type EstimatesQuery = z.infer<typeof EstimatesQuery>;
+
+/** `?try=&crop=&level=&sort=&direction=&page=` of what another choice of weights would change. */
+export const WeightingQuery = z.object({
+	try: z.enum(weightings).exclude(["design"]).optional().catch(undefined),
+	crop: z.string().max(60).catch("all"),
+	level: z.enum(areaLevels).catch("state"),
+	sort: z.enum(["area", "difference", "errorChange"]).catch("area"),
+	direction: z.enum(["asc", "desc"]).catch("asc"),
+	page: z.coerce.number().int().min(1).max(100_000).catch(1),
+});
+export type WeightingQuery = z.infer<typeof WeightingQuery>;
 
 /** `?crop=&show=&sort=&direction=&page=` of the comparison with a release's draft. */
 export const ComparedQuery = z.object({

@@ -51,15 +51,17 @@ const intervals = { ratio: "normal", mean: "normal", total: "normal", proportion
 export function FigureFormula({ told: { origin, measure } }: { told: ToldFigure }) {
 	const { t } = useTranslation("release");
 	const format = useFormat();
-	const { totals } = origin;
+	const { totals, calibrations } = origin;
+	const isCalibrated = calibrations.length > 0;
 	const quotient = measure.kind === "ratio" || measure.kind === "proportion";
 	const isDay = measure.kind === "day";
 	return (
 		<Section title={t("origin.formula.title")}>
 			<ol className="mb-5 ml-5 max-w-prose list-decimal space-y-2">
 				<li>{t("origin.formula.weight")}</li>
+				{isCalibrated && <li>{t("origin.formula.calibrated")}</li>}
 				<li>{t(`origin.formula.${measure.kind}`)}</li>
-				<li>{t(isDay ? "origin.formula.shareVariance" : "origin.formula.variance")}</li>
+				<li>{t(`origin.formula.${isDay ? "shareVariance" : isCalibrated ? "calibratedVariance" : "variance"}`)}</li>
 				<li>{t(`origin.formula.${intervals[measure.kind]}`)}</li>
 			</ol>
 			<DescriptionList

@@ -17,6 +17,7 @@ export function figureOriginCsv(told: ToldFigure): string {
 				note: "not for publication",
 				survey: survey.title.en,
 				season: survey.season,
+				weighting: told.weighting,
 				measure: measure.key,
 				kind: measure.kind,
 				unit: measure.unit,
@@ -44,6 +45,7 @@ export function figureOriginCsv(told: ToldFigure): string {
 			}),
 			...responseLines(told),
 			...strataLines(told),
+			...calibrationLines(told),
 		],
 	);
 }
@@ -65,6 +67,10 @@ function strataLines({ origin: { strata, joins } }: ToldFigure): Line[] {
 				frame_size: stratum.frameSize,
 				respondents: stratum.respondents,
 				weight: stratum.weight,
+				...(stratum.calibrated && {
+					smallest_calibrated_weight: stratum.calibrated.smallest,
+					largest_calibrated_weight: stratum.calibrated.largest,
+				}),
 				respondents_in_area: stratum.inArea,
 				sum_y: stratum.sumY,
 				sum_x: stratum.sumX,
@@ -73,6 +79,25 @@ function strataLines({ origin: { strata, joins } }: ToldFigure): Line[] {
 		),
 		...joins.flatMap(({ stratumKeys, step }) => lines("joined", stratumKeys.join("+"), { step })),
 	];
+}
+
+function calibrationLines({ origin }: ToldFigure): Line[] {
+	return origin.calibrations.flatMap((one) => {
+		const of = one.stateFips.join("+");
+		return [
+			...lines("calibration", of, {
+				respondents: one.respondents,
+				sweeps: one.sweeps,
+				smallest_factor: one.smallest,
+				largest_factor: one.largest,
+				design_weights_kept_for: one.fallback,
+				districts_taken_together: one.takenTogether.join("+"),
+			}),
+			...one.totals.flatMap((known) =>
+				lines("known_total", `${of} ${known.of} ${known.group}`, { frame: known.total, by_design: known.byDesign }),
+			),
+		];
+	});
 }
 
 function lines(part: string, of: string, items: Record<string, string | number | null>): Line[] {

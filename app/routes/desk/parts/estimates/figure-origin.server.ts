@@ -3,9 +3,11 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { countDispositions } from "#app/collect/dispositions.server.ts";
 import { frameResponse } from "#app/estimate/response-rate.ts";
+import { readWeighing } from "#app/jobs/weighed-estimates.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { measuresOf, readDraftInputs } from "./draft-estimates.server.ts";
 import { originOf } from "./figure-origin.ts";
+import { weighedOriginOf } from "./weighed-origin.ts";
 import { readFigureSeasons } from "./figure-seasons.server.ts";
 
 export type FigurePlace = { surveyId: string; areaKey: string; cropKey: string; measureKey: string };
@@ -27,7 +29,18 @@ export async function findFigureOrigin(trx: Trx, viewer: Associate, place: Figur
 		area: { key: area.key, kind: area.kind, name: area.name, stateFips: area.stateFips },
 		cropKey,
 		measure: { key, label, description, kind, unit, decimals, season: inputs.survey.season },
-		origin: originOf(inputs, { areaKey, cropKey, measure }),
+		weighting: inputs.weighting,
+		frameStrata: inputs.frame.flatMap(({ cropKey: crop, stratumKey, stateFips, sizeClass }) =>
+			crop === cropKey ? [{ stratumKey, stateFips, sizeClass }] : [],
+		),
+		districts: inputs.areas.flatMap((one) => (one.kind === "district" ? [{ key: one.key, name: one.name }] : [])),
+		origin:
+			inputs.weighting === "design"
+				? originOf(inputs, { areaKey, cropKey, measure })
+				: weighedOriginOf(
+						{ ...inputs, ...(await readWeighing(trx, inputs, { measureKey, cropKey })) },
+						{ areaKey, cropKey, measure },
+					),
 		seasons: await readFigureSeasons(trx, viewer, inputs, { areaKey, cropKey, measure }),
 		dispositions,
 		response: frameResponse(dispositions),

@@ -1,4 +1,5 @@
 import type { Measure } from "#app/collect/form.ts";
+import type { CalibrationNote } from "#app/estimate/calibration/weighting.ts";
 import { type DomainStratum, domainStrata, domainTotals } from "#app/estimate/domain.ts";
 import { type Linearized, linearize } from "#app/estimate/linearize.ts";
 import { histogramStrata, sharesAtOrBelow } from "#app/estimate/quantile.ts";
@@ -22,6 +23,8 @@ export type OriginStratum = {
 	frameSize: number;
 	respondents: number;
 	weight: number;
+	/** Where weights were calibrated, those of the area's answers; without, each has the stratum's. */
+	calibrated?: { smallest: number; largest: number };
 	inArea: number;
 	sumY: number;
 	sumX: number;
@@ -39,6 +42,8 @@ export type FigureOrigin = {
 	/** Weighted sums over the area, in the canonical units of the measure's questions; of days, y is those at or before the median. */
 	totals: { count: number; y: number; x: number };
 	items: { used: number; setAside: number; unanswered: number; rate: number | null };
+	/** How calibrated weights came about, in the states that hold answers of the area; none by design weights. */
+	calibrations: CalibrationNote[];
 };
 
 /** How the figure of one measure and crop in one area comes about, number by number, from the tallies that it is made of. */
@@ -78,6 +83,7 @@ export function originOf(
 		otherStrata: design.length - strata.length,
 		totals: { count, y: totalY, x: totalX },
 		items: itemsOf(inArea),
+		calibrations: [],
 	};
 }
 
@@ -88,7 +94,8 @@ function varianceShares(domain: readonly DomainStratum[], linearized: Linearized
 	return variances.map((variance) => variance / sum);
 }
 
-function itemsOf(tallies: readonly KeptTally[]): FigureOrigin["items"] {
+/** How many answers a figure could use, of those that bear on it. */
+export function itemsOf(tallies: readonly KeptTally[]): FigureOrigin["items"] {
 	const sum = (key: "n" | "setAside" | "unanswered") => tallies.reduce((total, tally) => total + tally[key], 0);
 	const items = { used: sum("n"), setAside: sum("setAside"), unanswered: sum("unanswered") };
 	// The tallies count what gave no usable answer in one number, whether not known, refused or left blank.

@@ -1,11 +1,13 @@
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { Measure } from "#app/collect/form.ts";
+import { weighAnswers } from "#app/estimate/calibration/blocks.ts";
+import { changeOfWeighed } from "#app/estimate/calibration/weighed-change.ts";
 import { type CellChange, changeOfCell } from "#app/estimate/change.ts";
 import { compareToSeasons, type SeasonsComparison } from "#app/estimate/seasons.ts";
 import { respondentsByStratum } from "#app/estimate/strata.ts";
-import { estimateSurvey } from "#app/estimate/survey.ts";
 import { joinSeasons, twoSeasonStrata } from "#app/estimate/two-seasons.ts";
+import { estimateByWeights, readWeighing } from "#app/jobs/weighed-estimates.server.ts";
 import { pairsOfArea, readBothSeasons } from "#app/tally/both-seasons.server.ts";
 import { type DraftInputs, measuresOf, readDraftInputs } from "./draft-estimates.server.ts";
 
@@ -40,12 +42,10 @@ export async function readFigureSeasons(
 		const same = inputs && asked?.kind === place.measure.kind && asked.unit === place.measure.unit;
 		seasons.push({ surveyId, season, inputs: same ? inputs : null });
 	}
-	const figure = figureOf(now, place);
-	const earlier = seasons.map(({ surveyId, season, inputs }) => ({
-		surveyId,
-		season,
-		figure: inputs && figureOf(inputs, place),
-	}));
+	const figure = await figureOf(trx, now, place);
+	const earlier: FigureSeasons["earlier"] = [];
+	for (const { surveyId, season, inputs } of seasons)
+		earlier.push({ surveyId, season, figure: inputs && (await figureOf(trx, inputs, place)) });
 	const last = seasons.find(({ season }) => season === now.survey.season - 1);
 	const change = last?.inputs && place.measure.kind !== "day" ? await changeSince(trx, last.inputs, now, place) : null;
 	const usual =
@@ -84,10 +84,9 @@ async function listEarlierSurveys(trx: Trx, viewer: Associate, surveyId: string,
 const talliesOf = (inputs: DraftInputs, { cropKey, measure }: Place) =>
 	inputs.tallies.filter((tally) => tally.measureKey === measure.key && tally.cropKey === cropKey);
 
-function figureOf(inputs: DraftInputs, place: Place): Told | null {
-	const { frame, areasOfCounty } = inputs;
+async function figureOf(trx: Trx, inputs: DraftInputs, place: Place): Promise<Told | null> {
 	const tallies = talliesOf(inputs, place);
-	const { estimates } = estimateSurvey({ measures: [place.measure], frame, tallies, areasOfCounty });
+	const { estimates } = await estimateByWeights(trx, { ...inputs, measures: [place.measure], tallies });
 	const found = estimates.find(({ areaKey }) => areaKey === place.areaKey);
 	if (!found || found.value === null || found.standardError === null) return null;
 	return { value: found.value, standardError: found.standardError };
@@ -102,6 +101,8 @@ async function changeSince(trx: Trx, before: DraftInputs, now: DraftInputs, plac
 		measureKey: measure.key,
 		cropKey,
 	});
+	if (before.weighting !== "design" || now.weighting !== "design")
+		return weighedChange(trx, before, now, place, both.frame);
 	const isInside = (countyFips: string) => now.areasOfCounty.get(countyFips)?.includes(areaKey) ?? false;
 	const seasonOf = (inputs: DraftInputs) => {
 		const tallies = talliesOf(inputs, place);
@@ -117,7 +118,29 @@ async function changeSince(trx: Trx, before: DraftInputs, now: DraftInputs, plac
 		now: second.inside,
 		both: pairsOfArea(both.pairs, isInside),
 	});
-	const { change, missing, respondents, interval } = changeOfCell(measure.kind, strata);
+	return toldIn(measure, changeOfCell(measure.kind, strata));
+}
+
+/** By calibrated weights, where either season has them: from the answers, since tallies do not tell who answered both. */
+async function weighedChange(
+	trx: Trx,
+	before: DraftInputs,
+	now: DraftInputs,
+	place: Place,
+	onBothFrames: Map<string, number>,
+) {
+	const { areaKey, cropKey, measure } = place;
+	const seasonOf = async (inputs: DraftInputs) => {
+		const weighing = await readWeighing(trx, inputs, { measureKey: measure.key, cropKey });
+		return { weighed: weighAnswers(weighing), frame: weighing.frame };
+	};
+	const isInside = (countyFips: string) => now.areasOfCounty.get(countyFips)?.includes(areaKey) ?? false;
+	const [first, second] = [await seasonOf(before), await seasonOf(now)];
+	const kind = measure.kind === "day" ? "ratio" : measure.kind;
+	return toldIn(measure, changeOfWeighed(kind, first, second, isInside, onBothFrames));
+}
+
+function toldIn(measure: Measure, { change, missing, respondents, interval }: CellChange) {
 	const scaled = (value: number) => value * measure.scale;
 	return {
 		missing,

@@ -23,6 +23,18 @@ export function FigureStrata({ told: { origin, measure } }: { told: ToldFigure }
 					number("frame", t("origin.strata.frameSize"), (one) => format.number(one.frameSize)),
 					number("respondents", t("origin.strata.respondents"), (one) => format.number(one.respondents)),
 					number("weight", t("origin.strata.weight"), (one) => format.number(one.weight, 3)),
+					...(origin.calibrations.length > 0
+						? [
+								number("calibrated", t("weighting.figure.range"), ({ calibrated }) =>
+									calibrated
+										? t("weighting.figure.rangeOf", {
+												smallest: format.number(calibrated.smallest, 3),
+												largest: format.number(calibrated.largest, 3),
+											})
+										: t("estimates.absent"),
+								),
+							]
+						: []),
 					number("inArea", t("origin.strata.inArea"), (one) => format.number(one.inArea)),
 					number("sumY", t(isDay ? "origin.strata.before" : "origin.strata.sumY"), (one) =>
 						format.number(one.sumY, isDay ? 0 : 1),
@@ -59,7 +71,8 @@ function number(key: string, header: string, cell: (stratum: OriginStratum) => s
 
 const sizeNames = ["small", "medium", "large"] as const;
 
-function useStratumName() {
+/** Strata by state and size, in words. */
+export function useStratumName() {
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	return (parts: OriginStratum["parts"]) =>

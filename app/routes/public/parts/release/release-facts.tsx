@@ -41,6 +41,7 @@ export function ReleaseFacts({ release, counties, districts, band, places }: Fac
 		})),
 		!release.withdrawn && { term: t("data.one.countyCells"), detail: counted(counties) },
 		!release.withdrawn && { term: t("data.one.districtCells"), detail: counted(districts) },
+		method.weighting && { term: t("data.one.weights"), detail: t(`data.one.weightsOf.${method.weighting}`) },
 		rules.minimumOwners && {
 			term: t("data.one.minimum"),
 			detail: t("data.one.minimumOwners", { count: rules.minimumOwners, value: format.number(rules.minimumOwners) }),
