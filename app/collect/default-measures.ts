@@ -93,7 +93,8 @@ function oncePercent(question: Question): Measure {
 	return {
 		...common,
 		key: question.key,
-		kind: "mean",
+		// No percent is read that is below 0 or above 100, so that the mean of them is a share too.
+		kind: "proportion",
 		label: nameOf(question),
 		description: { en: `Mean per operation: ${question.text.en}`, es: `Promedio por finca: ${question.text.es}` },
 		unit: "percent",
@@ -110,7 +111,6 @@ function weighedPercent(question: Question): Measure[] {
 	const key = `${question.key}_trees`;
 	const share: Measure = {
 		...oncePercent(question),
-		kind: "ratio",
 		description: {
 			en: `Each planting counts with its trees or bushes in bearing: ${question.text.en}`,
 			es: `Cada plantación cuenta con sus árboles o arbustos en producción: ${question.text.es}`,

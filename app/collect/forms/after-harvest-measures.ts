@@ -48,7 +48,8 @@ export const afterHarvestMeasures: Measure[] = [
 	},
 	{
 		key: "freeze_loss",
-		kind: "ratio",
+		// What a freeze took is a part of the crop, so its interval is that of a share.
+		kind: "proportion",
 		label: { en: "Loss to freeze or frost", es: "Pérdida por helada" },
 		description: {
 			en: "Pounds lost to freeze or frost as a share of a normal crop.",

@@ -97,6 +97,17 @@ test.each(forms)("each figure of the form %s names the base quantities that its 
 	}
 });
 
+test.each(forms)(
+	"each share of the form %s has the interval of a share, which stays between 0 and 100 percent",
+	(_key, form) => {
+		const percents = form.measures.filter(({ unit }) => unit === "percent");
+		expect(percents.length).toBeGreaterThan(0);
+		// A loss alone can be below 0, where a crop was above normal.
+		const others = percents.filter(({ kind }) => kind !== "proportion").map(({ key }) => key);
+		expect(others).toEqual(form.key === "after_harvest" ? ["crop_loss"] : []);
+	},
+);
+
 test("each crop has pests of its own to tell of, and each pest is asked about where it is offered", () => {
 	for (const cropKey of cropKeys)
 		expect(pestList.filter(({ crops }) => crops.includes(cropKey)).length).toBeGreaterThan(0);

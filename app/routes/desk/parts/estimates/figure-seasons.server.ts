@@ -39,7 +39,7 @@ export async function readFigureSeasons(
 	for (const { surveyId, season } of surveys) {
 		const inputs = await readDraftInputs(trx, viewer, surveyId);
 		const asked = inputs && measuresOf(inputs, place.cropKey).find(({ key }) => key === place.measure.key);
-		const same = inputs && asked?.kind === place.measure.kind && asked.unit === place.measure.unit;
+		const same = inputs && asked && isSameFigure(asked, place.measure);
 		seasons.push({ surveyId, season, inputs: same ? inputs : null });
 	}
 	const figure = await figureOf(trx, now, place);
@@ -55,6 +55,13 @@ export async function readFigureSeasons(
 			earlier.map((one) => one.figure),
 		);
 	return { earlier, change: change && { ...change, since: now.survey.season - 1 }, usual };
+}
+
+/** A ratio, a mean and a proportion of one key are one figure: how it is told has changed, not what. */
+function isSameFigure(asked: Measure, now: Measure): boolean {
+	const quotients = ["ratio", "mean", "proportion"];
+	const alike = asked.kind === now.kind || (quotients.includes(asked.kind) && quotients.includes(now.kind));
+	return alike && asked.unit === now.unit;
 }
 
 /** The latest survey of each of the last seasons that asked by the same form, the newest first. */
