@@ -27,6 +27,8 @@ export type WeighedAnswers = {
 	designWeights: number[];
 	weights: number[];
 	blocks: WeighedBlock[];
+	/** Which block each answer is in, and its place there; null where everybody of its stratum answered. */
+	blockOf: ({ block: number; member: number } | null)[];
 };
 
 /** The strata of one state, or of some that share one, in which not everybody answered. */
@@ -75,7 +77,10 @@ export function weighAnswers(input: WeighingInput): WeighedAnswers {
 		for (const [k, i] of members.entries()) weights[i] = calibrated.calibration.weights[k]!;
 		return { ...calibrated, sample, members, places: open };
 	});
-	return { answers, strata, stratumOf, designWeights, weights, blocks };
+	const blockOf: WeighedAnswers["blockOf"] = answers.map(() => null);
+	for (const [block, { members }] of blocks.entries())
+		for (const [member, i] of members.entries()) blockOf[i] = { block, member };
+	return { answers, strata, stratumOf, designWeights, weights, blocks, blockOf };
 }
 
 /** Where everybody answered, nothing is left to be weighed. */

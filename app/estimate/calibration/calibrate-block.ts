@@ -50,8 +50,11 @@ export function calibrateBlock(weighting: Weighting, part: BlockPart): BlockCali
 
 /** Takes weights only where none is far from what it was: a few answers must not stand for everybody. */
 function judge(part: BlockPart, aim: Aim, calibration: Calibration): BlockCalibration {
-	const smallest = Math.min(...calibration.factors);
-	const largest = Math.max(...calibration.factors);
+	let [smallest, largest] = [Infinity, -Infinity];
+	for (const factor of calibration.factors) {
+		smallest = Math.min(smallest, factor);
+		largest = Math.max(largest, factor);
+	}
 	const { lowestFactor, highestFactor } = calibrationLimits;
 	if (!(smallest >= lowestFactor && largest <= highestFactor)) return keepDesign(part, aim, "extreme_weights");
 	const { sweeps } = calibration;

@@ -30,10 +30,14 @@ export function independentBasis(
 
 /** Residuals of the weighted regression of values on the basis. */
 export function residualsOf(values: readonly number[], basis: Basis, weights: readonly number[]): number[] {
-	let rest = { values, total: 0 };
-	// Twice: what rounding leaves of a direction the first time is gone after the second.
-	for (let pass = 0; pass < 2; pass++) for (const direction of basis) rest = withoutPart(rest, direction, weights);
-	return [...rest.values];
+	const rest = [...values];
+	// At right angles to each other, the directions can each be taken out of the values by themselves.
+	for (const direction of basis) {
+		const part = product(values, direction.values, weights);
+		if (part === 0) continue;
+		for (let i = 0; i < rest.length; i++) rest[i]! -= part * direction.values[i]!;
+	}
+	return rest;
 }
 
 /** Weighted sum of products of two lists. */

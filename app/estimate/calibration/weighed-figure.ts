@@ -39,11 +39,18 @@ export function weighedFigure(
 ): (Figure & { variances: Map<number, number> }) | null {
 	const linearized = linearize(kind, weightedParts(weighed, inside, summed));
 	if (!linearized) return null;
-	const errors = new Map(inside.map((i) => [i, contribution(linearized, summed(weighed.answers[i]!))]));
+	// Only the blocks that share answers with the area: most areas lie in one state.
+	const touched = new Map<number, number[]>();
+	for (const i of inside) {
+		const place = weighed.blockOf[i];
+		if (!place) continue;
+		const values = touched.get(place.block) ?? weighed.blocks[place.block]!.members.map(() => 0);
+		values[place.member] = contribution(linearized, summed(weighed.answers[i]!));
+		touched.set(place.block, values);
+	}
 	const variances = new Map<number, number>();
-	for (const { sample, calibration, members, places } of weighed.blocks) {
-		if (!members.some((i) => errors.has(i))) continue;
-		const values = members.map((i) => errors.get(i) ?? 0);
+	for (const [block, values] of touched) {
+		const { sample, calibration, places } = weighed.blocks[block]!;
 		for (const [at, variance] of unexplainedVariances(sample, calibration, values).entries())
 			variances.set(places[at]!, variance);
 	}

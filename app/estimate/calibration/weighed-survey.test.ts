@@ -91,6 +91,8 @@ type Placed = Pick<ToldAnswer, "countyFips" | "stratumKey">;
 const districtName = ({ countyFips }: Placed) => districtOf.get(countyFips) ?? `rest of ${countyFips[0]}`;
 const inDistrict = (key: string) => (one: Placed) => (districtName(one) === key ? 1 : 0);
 const inStratum = (key: string) => (one: Placed) => (one.stratumKey === key ? 1 : 0);
+const isInside = (county: string) => areasOfCounty.get(county)!.includes("A");
+const inStrata = (answers: readonly ToldAnswer[]) => groupBy(answers, ({ stratumKey }) => stratumKey);
 const isRest = ({ countyFips }: { countyFips: string }) => ["A3", "A4"].includes(countyFips);
 
 const kinds = [
@@ -318,7 +320,6 @@ describe("a survey by calibrated weights", () => {
 		const before = now
 			.filter(() => draw() < 0.7)
 			.map((answer) => ({ ...answer, y: answer.y * (0.5 + draw()), x: answer.x * (0.9 + 0.2 * draw()) }));
-		const isInside = (county: string) => areasOfCounty.get(county)!.includes("A");
 		const frame = inputOf(units, now, "design").frame;
 		const onBoth = new Map(frame.map(({ stratumKey, frameSize }) => [stratumKey, frameSize]));
 		const season = (answers: ToldAnswer[], weighting: Weighting) => ({
@@ -327,7 +328,6 @@ describe("a survey by calibrated weights", () => {
 		});
 		const change = (weighting: Weighting) =>
 			changeOfWeighed("ratio", season(before, weighting), season(now, weighting), isInside, onBoth);
-		const inStrata = (answers: ToldAnswer[]) => groupBy(answers, ({ stratumKey }) => stratumKey);
 		const tallied = (answers: ToldAnswer[]) =>
 			[...inStrata(answers)].map(([stratumKey, own]) => ({ stratumKey, ...tallyOf(own) }));
 		const nowOf = new Map(now.map((answer) => [answer.operationId, answer]));

@@ -57,10 +57,11 @@ export async function readFigureSeasons(
 	return { earlier, change: change && { ...change, since: now.survey.season - 1 }, usual };
 }
 
+const quotients = new Set<Measure["kind"]>(["ratio", "mean", "proportion"]);
+
 /** A ratio, a mean and a proportion of one key are one figure: how it is told has changed, not what. */
 function isSameFigure(asked: Measure, now: Measure): boolean {
-	const quotients = ["ratio", "mean", "proportion"];
-	const alike = asked.kind === now.kind || (quotients.includes(asked.kind) && quotients.includes(now.kind));
+	const alike = asked.kind === now.kind || (quotients.has(asked.kind) && quotients.has(now.kind));
 	return alike && asked.unit === now.unit;
 }
 
