@@ -31,16 +31,16 @@ async function drawn(value: number, more: Partial<Operation> = {}, language = "e
 }
 
 test.each([
-	[61, "Yours, 61%, is above that of East Iowa: 52%, likely between 44 and 60%."],
-	[60.4, "Yours, 60%, is about that of East Iowa: 52%, likely between 44 and 60%."],
-	[43, "Yours, 43%, is below that of East Iowa: 52%, likely between 44 and 60%."],
+	[61, "Your figure, 61%, is above that of East Iowa: 52%, likely between 44 and 60%."],
+	[60.4, "Your figure, 60%, is about that of East Iowa: 52%, likely between 44 and 60%."],
+	[43, "Your figure, 43%, is below that of East Iowa: 52%, likely between 44 and 60%."],
 ])(
 	"an own value of %d is told against the area's likely range, in words and as the drawing's name",
 	async (own, said) => {
 		const page = await drawn(own);
 		expect(page).toContain(`<p class="mt-1 font-bold">${said}</p>`);
 		expect(page).toContain(`aria-label="${said}"`);
-		expect(await drawn(own, {}, "es")).toContain("East Iowa: 52%, probablemente entre 44 y 60%.");
+		expect(await drawn(own, {}, "es")).toContain("(East Iowa): 52%, probablemente entre 44 y 60%.");
 	},
 );
 
@@ -53,5 +53,5 @@ test("both values are drawn on one scale, the own one's bar as long as it is lar
 test("without an area that shows the figure nothing is drawn and nothing is compared", async () => {
 	const page = await drawn(61, { cells: {} });
 	expect(page).toContain("No area around you shows this figure.");
-	expect(page).not.toMatch(/<svg|Yours/);
+	expect(page).not.toMatch(/<svg|Your figure/);
 });
