@@ -110,13 +110,17 @@ export default [
 		layout("routes/desk/layout.tsx", [
 			index("routes/desk/overview.tsx"),
 			route("growers", "routes/desk/growers.tsx"),
+			route("growers/new", "routes/desk/grower-new.tsx"),
 			route("growers/chosen", "routes/desk/growers-chosen.tsx"),
+			route("growers/export", "routes/desk/growers-export.tsx"),
 			route("growers/duplicates", "routes/desk/growers-duplicates.tsx"),
 			route("growers/merge/:keptId/:droppedId", "routes/desk/growers-merge.tsx"),
 			route("growers/import", "routes/desk/growers-import.tsx"),
 			route("growers/import/:importId", "routes/desk/growers-import-file.tsx"),
 			route("growers/:operationId", "routes/desk/grower.tsx"),
 			route("growers/:operationId/edit", "routes/desk/grower-edit.tsx"),
+			route("growers/:operationId/plantings/new", "routes/desk/planting-new.tsx"),
+			route("growers/:operationId/plantings/:plantingId", "routes/desk/planting.tsx"),
 			route("surveys", "routes/desk/surveys.tsx"),
 			route("surveys/new", "routes/desk/survey-new.tsx"),
 			...prefix("surveys/:surveyId", [

@@ -22,6 +22,7 @@ export const logActions = {
 	operation: [
 		...(["moved", "left", "mail_stopped", "mail_resumed", "address_mended"] as const),
 		...(["language_set", "tried_anew", "exported", "merged", "merge_undone", "edited"] as const),
+		...(["added", "planting_kept"] as const),
 		...(["publication_allowed", "publication_disallowed"] as const),
 	],
 	import: ["finished", "undone"],

@@ -33,6 +33,17 @@ export const fileHeader = [
 	"year_planted",
 ] as const;
 
+/** How many plantings the file of these operations tells. */
+export async function countPlantings(trx: Trx, operationIds: string[]): Promise<number> {
+	const { count } = await trx
+		.selectFrom("directory.planting")
+		.where((eb) => eb("operation_id", "=", eb.fn.any(eb.val(operationIds))))
+		.where("removed_on", "is", null)
+		.select((eb) => eb.fn.countAll<number>().as("count"))
+		.executeTakeFirstOrThrow();
+	return count;
+}
+
 /** The rows of the file under `fileHeader`, in the order of the operations. The caller has narrowed them. */
 export async function listFileRows(trx: Trx, operations: FileRow[]): Promise<(string | number | null)[][]> {
 	const ids = operations.map(({ operationId }) => operationId);

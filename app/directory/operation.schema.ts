@@ -39,17 +39,3 @@ export function queryParts(query: OperationQuery): Record<string, string> {
 	);
 	return Object.fromEntries(told.map(([name, value]) => [name, String(value)]));
 }
-
-const text = (max: number) => z.string({ error: "empty" }).trim().min(1, "empty").max(max, "too_long");
-
-/** An operation as an associate writes it down. */
-export const OperationInput = z.object({
-	name: text(200),
-	ownerName: text(200),
-	countyFips: z.string({ error: "empty" }).regex(/^\d{5}$/, "unknown_county"),
-	contactName: text(200),
-	email: z.email("email_wrong").max(254, "too_long").optional(),
-	phone: z.string().trim().max(40, "too_long").optional(),
-	language: z.enum(["en", "es"], "choice_wrong"),
-});
-export type OperationInput = z.infer<typeof OperationInput>;

@@ -1,10 +1,7 @@
-import { randomUUID } from "node:crypto";
 import { sql, type Transaction } from "kysely";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { DB } from "#db/schema.ts";
-import { findCounty } from "./areas.server.ts";
 import { compareCrops } from "./crops.ts";
-import type { OperationInput } from "./operation.schema.ts";
 
 type Trx = Transaction<DB>;
 const isUuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/i;
@@ -87,32 +84,4 @@ export async function findOperation(trx: Trx, viewer: Associate, operationId: st
 			a.plantingId.localeCompare(b.plantingId),
 	);
 	return { ...operation, language: operation.language as "en" | "es", plantings: byCrop, merged };
-}
-
-/** Enters an operation with an owner of its own. A county outside the viewer's states is as unknown as one that is not. */
-export async function createOperation(
-	trx: Trx,
-	viewer: Associate,
-	input: OperationInput,
-): Promise<{ operationId: string } | "unknown_county"> {
-	const county = await findCounty(trx, input.countyFips);
-	if (!county || !viewer.stateFips.includes(county.state_fips)) return "unknown_county";
-	// Ids are made here: row-level security shows an owner only once its operation is there, so nothing can be returned.
-	const [ownerId, operationId] = [randomUUID(), randomUUID()];
-	await trx.insertInto("directory.owner").values({ owner_id: ownerId, name: input.ownerName }).execute();
-	await trx
-		.insertInto("directory.operation")
-		.values({
-			operation_id: operationId,
-			owner_id: ownerId,
-			name: input.name,
-			county_fips: county.county_fips,
-			state_fips: county.state_fips,
-			contact_name: input.contactName,
-			email: input.email ?? null,
-			phone: input.phone ?? null,
-			language: input.language,
-		})
-		.execute();
-	return { operationId };
 }

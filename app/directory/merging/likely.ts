@@ -53,12 +53,25 @@ export function likelyPairs(candidates: readonly Candidate[], apart: ReadonlySet
 				const key = pairKey(a!.operationId, b!.operationId);
 				if (a === b || pairs.has(key) || apart.has(key)) continue;
 				const signs = signsOf(a!, b!);
-				const score = signs.reduce((sum, sign) => sum + weights[sign], 0);
+				const score = scoreOf(signs);
 				if (score >= enough) pairs.set(key, { a: a!.operationId, b: b!.operationId, signs, score });
 			}
 	}
 	return [...pairs.values()].toSorted((x, y) => y.score - x.score || x.a.localeCompare(y.a) || x.b.localeCompare(y.b));
 }
+
+/** Those that are likely the same grower as one who is about to be written down, the likeliest first. */
+export function likelyTo<T extends Candidate>(one: Omit<Candidate, "operationId">, others: readonly T[]): T[] {
+	const read = (row: Candidate): Read => ({ ...row, plain: tellingName(row.name), digits: digits(row.phone) });
+	const first = read({ ...one, operationId: "" });
+	return others
+		.map((other) => ({ other, score: scoreOf(signsOf(first, read(other))) }))
+		.filter(({ score }) => score >= enough)
+		.toSorted((x, y) => y.score - x.score || x.other.operationId.localeCompare(y.other.operationId))
+		.map(({ other }) => other);
+}
+
+const scoreOf = (signs: Sign[]) => signs.reduce((sum, sign) => sum + weights[sign], 0);
 
 export const pairKey = (a: string, b: string) => (a < b ? `${a} ${b}` : `${b} ${a}`);
 

@@ -10,6 +10,7 @@ import type { Associate } from "#app/auth/viewer.ts";
 import { ContactForm } from "#app/collect/contacts.schema.ts";
 import { listContacts, noteContact } from "#app/collect/contacts.server.ts";
 import { sendNewLink } from "#app/collect/new-link.server.ts";
+import { listFrozenFrames } from "#app/collect/frozen-frames.server.ts";
 import { listOperationSurveys } from "#app/collect/operation-surveys.server.ts";
 import { markReachable } from "#app/collect/reach.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
@@ -21,6 +22,7 @@ import { Section } from "#app/components/section.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
 import { mendAddress } from "#app/directory/mail-address.server.ts";
 import { findOperation } from "#app/directory/operations.server.ts";
+import { putBackPlanting } from "#app/directory/plantings.server.ts";
 import { findWaiver, recordWaiver } from "#app/directory/waiver.server.ts";
 import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
@@ -29,6 +31,7 @@ import { MergedNotice } from "./parts/merging/merged-notice.tsx";
 import { AddressForm } from "./parts/address-form.tsx";
 import { useContactLabels } from "./parts/growers/contact-fields.tsx";
 import { Contacts } from "./parts/growers/contacts.tsx";
+import { FrozenFrames } from "./parts/growers/frozen-frames.tsx";
 import { People } from "./parts/growers/people.tsx";
 import { useGrowerName } from "./parts/grower-name.ts";
 import { PlantingTable } from "./parts/planting-table.tsx";
@@ -47,6 +50,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 			surveys: await listOperationSurveys(trx, desk.viewer, operationId),
 			people: await listGrantees(trx, operationId),
 			contacts: await listContacts(trx, operationId),
+			frames: await listFrozenFrames(trx, desk.viewer, operationId),
 		};
 	});
 	if (!found) throw refusal("operation_not_found");
@@ -58,11 +62,12 @@ const Step = z.discriminatedUnion("step", [
 	ContactForm.safeExtend({ step: z.literal("contact") }),
 	z.object({ step: z.literal("address"), email: z.email("email_wrong").max(254, "too_long").optional() }),
 	z.object({ step: z.enum(["allow", "disallow"]) }),
+	z.object({ step: z.literal("put_back"), plantingId: z.guid() }),
 ]);
 
 /**
- * Sends a new personal link for one survey, which ends the links sent before; mends the address that mail goes to; or records
- * whether the owner allows publication.
+ * Sends a new personal link for one survey, which ends the links sent before; mends the address that mail goes to; records
+ * whether the owner allows publication; or lets a planting stand again.
  */
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
@@ -77,12 +82,15 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 		if (step.step === "contact") return noteContact(trx, desk.viewer, operationId, step);
 		if (step.step === "link") return sendNewLink(trx, desk.viewer, step.surveyId, operationId, step.wave);
 		if (step.step === "address") return mend(trx, desk.viewer, operationId, step.email ?? null);
+		if (step.step === "put_back")
+			return putBackPlanting(trx, desk.viewer, { operationId, plantingId: step.plantingId });
 		const recorded = await recordWaiver(trx, desk.viewer, operationId, step.step === "allow");
 		return recorded === "not_found" ? recorded : { waiver: step.step };
 	});
 	if (outcome === "not_found") throw refusal("operation_not_found");
-	if (outcome === "noted") {
-		context.get(sessionContext).flash("toast", { key: "growers:contact.saved" });
+	if (outcome === "noted" || outcome === "put_back") {
+		const key = outcome === "noted" ? "growers:contact.saved" : "growers:planting.toast.put_back";
+		context.get(sessionContext).flash("toast", { key });
 		return redirect(href("/desk/growers/:operationId", params), 303);
 	}
 	if (typeof outcome === "string") return data({ refused: outcome, values: undefined, problems: [] }, { status: 409 });
@@ -107,7 +115,7 @@ async function mend(trx: Trx, viewer: Associate, operationId: string, email: str
 export const shouldRevalidate = lookAgain;
 
 export default function GrowerPage({ loaderData, actionData }: Route.ComponentProps) {
-	const { operation, surveys, people, contacts, waiver } = loaderData;
+	const { operation, surveys, people, contacts, waiver, frames } = loaderData;
 	const { t } = useTranslation("desk");
 	const sent = actionData?.values?.step;
 	const ofContact = sent === "contact" ? { values: actionData?.values, problems: actionData?.problems } : {};
@@ -140,7 +148,8 @@ export default function GrowerPage({ loaderData, actionData }: Route.ComponentPr
 			)}
 			{operation.status === "active" && <WaiverForm waiver={waiver} ownerName={operation.ownerName} />}
 			<Section title={t("grower.plantings")}>
-				<PlantingTable plantings={operation.plantings} />
+				<PlantingTable operation={operation} />
+				<FrozenFrames frames={frames} />
 			</Section>
 			<Section title={t("surveys.title")}>
 				<SurveysOfGrower surveys={surveys} operation={operation} />

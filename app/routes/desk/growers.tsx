@@ -78,6 +78,9 @@ export default function Growers({ loaderData, actionData }: Route.ComponentProps
 					<ButtonLink to={href("/desk/growers/duplicates")} kind="secondary">
 						{t("list.duplicates")}
 					</ButtonLink>
+					<ButtonLink to={href("/desk/growers/new")} kind="secondary">
+						{t("new.title")}
+					</ButtonLink>
 					<ButtonLink to={href("/desk/growers/import")} kind="secondary">
 						{t("list.import")}
 					</ButtonLink>

@@ -1,20 +1,16 @@
 import { useTranslation } from "react-i18next";
-import { data, Form, href, redirect } from "react-router";
+import { data, href, redirect } from "react-router";
 import type { Route } from "./+types/planting-new";
 import { requireOrchard } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
-import { Button } from "#app/components/button.tsx";
-import { ChoiceField } from "#app/components/choice-field.tsx";
-import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Page } from "#app/components/page.tsx";
-import { cropKeys } from "#app/directory/crops.ts";
-import { addPlanting } from "#app/directory/own-plantings.server.ts";
+import { addPlanting } from "#app/directory/plantings.server.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { BackToPlantings } from "./parts/back-to-orchard.tsx";
 import { getOwnOperation } from "./parts/own-operation.server.ts";
-import { PlantingFields, plantingLabels } from "./parts/planting-fields.tsx";
+import { NewPlantingForm } from "./parts/new-planting-form.tsx";
 import { newPlantingForm } from "./parts/planting-form.ts";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
@@ -34,25 +30,10 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 
 export default function PlantingNew({ loaderData, actionData, params }: Route.ComponentProps) {
 	const { t } = useTranslation("orchard");
-	const { values, problems } = actionData ?? {};
-	const crop = values?.cropKey;
 	return (
 		<Page title={t("plantings.addTitle")} lead={t("plantings.addLead", { operation: loaderData.operation.name })}>
 			<BackToPlantings operationId={params.operationId} />
-			<ErrorSummary problems={problems} labels={{ cropKey: t("plantings.field.cropKey"), ...plantingLabels(t) }} />
-			<Form method="post" noValidate>
-				<ChoiceField
-					kind="radio"
-					name="cropKey"
-					legend={t("plantings.field.cropKey")}
-					help={t("plantings.help.cropKey")}
-					options={cropKeys.map((key) => ({ value: key, label: t(`common:crop.${key}`) }))}
-					defaultValue={typeof crop === "string" ? crop : null}
-					problem={problems?.find(({ field }) => field === "cropKey")}
-				/>
-				<PlantingFields sent={values} problems={problems} />
-				<Button>{t("plantings.addButton")}</Button>
-			</Form>
+			<NewPlantingForm {...actionData} />
 		</Page>
 	);
 }

@@ -8,7 +8,7 @@ import { Button, ButtonLink } from "#app/components/button.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
-import { listOwnPlantings, putBackPlanting } from "#app/directory/own-plantings.server.ts";
+import { listPlantings, putBackPlanting } from "#app/directory/plantings.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { decimalsOf } from "#app/lib/format.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
@@ -18,7 +18,7 @@ import { usePlantingName } from "./parts/planting-name.ts";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const grower = requireOrchard(context);
-	const found = await grower.transaction((trx) => listOwnPlantings(trx, grower.viewer, params.operationId));
+	const found = await grower.transaction((trx) => listPlantings(trx, grower.viewer, params.operationId));
 	if (!found) throw refusal("orchard_not_found");
 	return found;
 }

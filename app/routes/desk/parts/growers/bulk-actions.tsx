@@ -1,7 +1,7 @@
 import { type ReactNode } from "react";
 import { useTranslation } from "react-i18next";
 import { Form, href, useLocation } from "react-router";
-import { buttonClasses } from "#app/components/button.tsx";
+import { ButtonLink } from "#app/components/button.tsx";
 import { Confirm } from "#app/components/confirm.tsx";
 import { Section } from "#app/components/section.tsx";
 import { languages, wordsIn } from "#app/i18n/language.ts";
@@ -70,10 +70,9 @@ export function BulkActions({ count, mark, returned, toLanguage, surveys }: Bulk
 			</Section>
 			<Section title={t("bulk.export.title")}>
 				<p className="mb-3 max-w-prose">{t("bulk.export.body", counted(count))}</p>
-				{/* A file, which the browser fetches itself. */}
-				<a href={`${href("/desk/growers/list.csv")}${search}`} className={buttonClasses({ kind: "secondary" })}>
+				<ButtonLink to={`${href("/desk/growers/export")}${search}`} kind="secondary">
 					{t("bulk.export.button")}
-				</a>
+				</ButtonLink>
 			</Section>
 		</>
 	);

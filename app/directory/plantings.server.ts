@@ -1,7 +1,9 @@
+import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
-import type { Grower } from "#app/auth/viewer.ts";
+import type { Associate, Grower } from "#app/auth/viewer.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import type { CropKey } from "./crops.ts";
+import { findOperation } from "./operations.server.ts";
 import { findOwnOperation } from "./own-operation.server.ts";
 
 /** What can be told of a planting; the crop stays what it was when it was written down. */
@@ -12,46 +14,51 @@ export type PlantingFacts = {
 	areaAcres: number | null;
 	plantedYear: number | null;
 };
-export type OwnPlanting = PlantingFacts & { plantingId: string; cropKey: CropKey; removedOn: string | null };
+export type NewPlanting = PlantingFacts & { cropKey: CropKey };
+export type Planting = PlantingFacts & { plantingId: string; cropKey: CropKey; removedOn: string | null };
 export type PlantingPlace = { operationId: string; plantingId: string };
+/** Who keeps plantings current: a grower those of the own operations, an associate those of the granted states. */
+export type Keeper = Grower | Associate;
 
-/** All plantings of a grower's own operation, also those pulled out, in the order of crops. */
-export async function listOwnPlantings(trx: Trx, viewer: Grower, operationId: string) {
-	const operation = await findOwnOperation(trx, viewer, operationId);
+/** All plantings of an operation that the viewer keeps, also those pulled out, in the order of crops. */
+export async function listPlantings(trx: Trx, viewer: Keeper, operationId: string) {
+	const operation = await findKept(trx, viewer, operationId);
 	if (!operation) return undefined;
 	const plantings = await selectPlantings(trx, operationId).execute();
-	return { operation, plantings: plantings as OwnPlanting[] };
+	return { operation, plantings: plantings as Planting[] };
 }
 
 /** One that stands; what was pulled out is put back before it is changed. */
-export async function findOwnPlanting(trx: Trx, viewer: Grower, { operationId, plantingId }: PlantingPlace) {
-	const all = await listOwnPlantings(trx, viewer, operationId);
+export async function findPlanting(trx: Trx, viewer: Keeper, { operationId, plantingId }: PlantingPlace) {
+	const all = await listPlantings(trx, viewer, operationId);
 	const planting = all?.plantings.find((row) => row.plantingId === plantingId && row.removedOn === null);
 	return all && planting && { operation: all.operation, planting };
 }
 
 export async function addPlanting(
 	trx: Trx,
-	viewer: Grower,
+	viewer: Keeper,
 	operationId: string,
-	{ cropKey, ...facts }: PlantingFacts & { cropKey: CropKey },
+	{ cropKey, ...facts }: NewPlanting,
 ): Promise<"added" | "not_found"> {
-	if (!(await findOwnOperation(trx, viewer, operationId))) return "not_found";
+	if (!(await findKept(trx, viewer, operationId))) return "not_found";
 	await trx
 		.insertInto("directory.planting")
 		.values({ operation_id: operationId, crop_key: cropKey, ...columnsOf(facts) })
 		.execute();
+	await noteAtDesk(trx, viewer, operationId, "added");
 	return "added";
 }
 
 export async function changePlanting(
 	trx: Trx,
-	viewer: Grower,
+	viewer: Keeper,
 	place: PlantingPlace,
 	facts: PlantingFacts,
 ): Promise<"changed" | "not_found"> {
 	if (!(await lockPlanting(trx, viewer, place))) return "not_found";
 	await writeFacts(trx, place.plantingId, facts);
+	await noteAtDesk(trx, viewer, place.operationId, "changed");
 	return "changed";
 }
 
@@ -61,7 +68,7 @@ export async function changePlanting(
  */
 export async function splitPlanting(
 	trx: Trx,
-	viewer: Grower,
+	viewer: Keeper,
 	place: PlantingPlace,
 	[first, second]: [PlantingFacts, PlantingFacts],
 ): Promise<"split" | "not_found" | { problems: Problem[] }> {
@@ -74,13 +81,14 @@ export async function splitPlanting(
 		.insertInto("directory.planting")
 		.values({ operation_id: place.operationId, crop_key: whole.cropKey, ...columnsOf(second) })
 		.execute();
+	await noteAtDesk(trx, viewer, place.operationId, "split");
 	return "split";
 }
 
 /** Notes the day on which a planting was pulled out. It stays in the list, and so does what was answered about it. */
 export async function pullOutPlanting(
 	trx: Trx,
-	viewer: Grower,
+	viewer: Keeper,
 	place: PlantingPlace,
 	removedOn: string,
 ): Promise<"pulled_out" | "not_found" | { problems: Problem[] }> {
@@ -94,16 +102,17 @@ export async function pullOutPlanting(
 		.set({ removed_on: removedOn })
 		.where("planting_id", "=", place.plantingId)
 		.execute();
+	await noteAtDesk(trx, viewer, place.operationId, "pulled_out");
 	return "pulled_out";
 }
 
 /** Undoes a pulling out. One that stands anyway stays as it is. */
 export async function putBackPlanting(
 	trx: Trx,
-	viewer: Grower,
+	viewer: Keeper,
 	{ operationId, plantingId }: PlantingPlace,
 ): Promise<"put_back" | "not_found"> {
-	const all = await listOwnPlantings(trx, viewer, operationId);
+	const all = await listPlantings(trx, viewer, operationId);
 	if (!all?.plantings.some((row) => row.plantingId === plantingId)) return "not_found";
 	await trx
 		.updateTable("directory.planting")
@@ -111,7 +120,28 @@ export async function putBackPlanting(
 		.where("planting_id", "=", plantingId)
 		.where("operation_id", "=", operationId)
 		.execute();
+	await noteAtDesk(trx, viewer, operationId, "put_back");
 	return "put_back";
+}
+
+async function findKept(trx: Trx, viewer: Keeper, operationId: string) {
+	if (viewer.role === "grower") return findOwnOperation(trx, viewer, operationId);
+	const operation = await findOperation(trx, viewer, operationId);
+	if (operation?.status !== "active") return undefined;
+	const { name, countyFips, countyName, stateFips, timeZone } = operation;
+	return { operationId, name, countyFips, countyName, stateFips, timeZone };
+}
+
+/** What a grower does with the own plantings is nobody's to read; what the desk does for one is logged. */
+async function noteAtDesk(trx: Trx, viewer: Keeper, operationId: string, what: string): Promise<void> {
+	if (viewer.role !== "associate") return;
+	await logEvent(trx, {
+		personId: viewer.personId,
+		action: "operation.planting_kept",
+		subjectKind: "operation",
+		subjectId: operationId,
+		detail: { what },
+	});
 }
 
 function selectPlantings(trx: Trx, operationId: string) {
@@ -135,15 +165,15 @@ function selectPlantings(trx: Trx, operationId: string) {
 }
 
 /** Two changes at once meet here: the second sees what the first made of the planting. */
-async function lockPlanting(trx: Trx, viewer: Grower, place: PlantingPlace): Promise<OwnPlanting | undefined> {
-	if (!(await findOwnPlanting(trx, viewer, place))) return undefined;
+async function lockPlanting(trx: Trx, viewer: Keeper, place: PlantingPlace): Promise<Planting | undefined> {
+	if (!(await findPlanting(trx, viewer, place))) return undefined;
 	await trx
 		.selectFrom("directory.planting")
 		.select("planting_id")
 		.where("planting_id", "=", place.plantingId)
 		.forUpdate()
 		.execute();
-	return (await findOwnPlanting(trx, viewer, place))?.planting;
+	return (await findPlanting(trx, viewer, place))?.planting;
 }
 
 async function writeFacts(trx: Trx, plantingId: string, facts: PlantingFacts): Promise<void> {

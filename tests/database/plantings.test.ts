@@ -5,13 +5,13 @@ import type { Grower } from "#app/auth/viewer.ts";
 import {
 	addPlanting as add,
 	changePlanting,
-	findOwnPlanting,
-	listOwnPlantings,
+	findPlanting,
+	listPlantings,
 	type PlantingFacts,
 	pullOutPlanting,
 	putBackPlanting,
 	splitPlanting,
-} from "#app/directory/own-plantings.server.ts";
+} from "#app/directory/plantings.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
 import { addPlanting, asGrower, growerOf, linkOf } from "./answering-fixture.ts";
 import { addOperation, connectOwner, count, loadPlaces, useDatabase } from "./surveys-fixture.ts";
@@ -120,9 +120,9 @@ describe("pulling out", () => {
 		const { place, viewer } = await grower();
 		expect(await as(viewer, (trx) => pullOutPlanting(trx, viewer, place, "2025-11-03"))).toBe("pulled_out");
 		expect(await rowsOf(place.operationId)).toMatchObject([{ removed_on: "2025-11-03", bearing_trees: 100 }]);
-		expect(await as(viewer, (trx) => findOwnPlanting(trx, viewer, place))).toBeUndefined();
+		expect(await as(viewer, (trx) => findPlanting(trx, viewer, place))).toBeUndefined();
 		expect(await as(viewer, (trx) => changePlanting(trx, viewer, place, facts()))).toBe("not_found");
-		expect(await as(viewer, (trx) => listOwnPlantings(trx, viewer, place.operationId))).toMatchObject({
+		expect(await as(viewer, (trx) => listPlantings(trx, viewer, place.operationId))).toMatchObject({
 			plantings: [{ plantingId: place.plantingId, removedOn: "2025-11-03" }],
 		});
 
@@ -145,14 +145,14 @@ test("another grower's plantings are neither seen nor changed, though they are t
 	const { place: theirs } = await grower();
 	const before = await rowsOf(theirs.operationId);
 	expect(before).toHaveLength(1);
-	expect(await as(viewer, (trx) => listOwnPlantings(trx, viewer, theirs.operationId))).toBeUndefined();
+	expect(await as(viewer, (trx) => listPlantings(trx, viewer, theirs.operationId))).toBeUndefined();
 	expect(await as(viewer, (trx) => add(trx, viewer, theirs.operationId, { cropKey: "plum", ...facts() }))).toBe(
 		"not_found",
 	);
 	// Their planting under their operation, under the grower's own, and what is no id at all.
 	const places = [theirs, { ...theirs, operationId: own.operationId }, { ...own, plantingId: "x" }];
 	for (const place of places) {
-		expect(await as(viewer, (trx) => findOwnPlanting(trx, viewer, place))).toBeUndefined();
+		expect(await as(viewer, (trx) => findPlanting(trx, viewer, place))).toBeUndefined();
 		expect(await as(viewer, (trx) => changePlanting(trx, viewer, place, facts()))).toBe("not_found");
 		expect(await as(viewer, (trx) => splitPlanting(trx, viewer, place, [facts(), facts()]))).toBe("not_found");
 		expect(await as(viewer, (trx) => pullOutPlanting(trx, viewer, place, "2025-11-03"))).toBe("not_found");
@@ -164,9 +164,9 @@ test("another grower's plantings are neither seen nor changed, though they are t
 test("a personal link opens no list of plantings, nor does a grant for an operation that has left", async () => {
 	const { place } = await grower();
 	const byLink = linkOf({ surveyId: crypto.randomUUID(), operationId: place.operationId });
-	expect(await as(byLink, (trx) => listOwnPlantings(trx, byLink, place.operationId))).toBeUndefined();
+	expect(await as(byLink, (trx) => listPlantings(trx, byLink, place.operationId))).toBeUndefined();
 	const operationId = await addOperation(owner, { state: "19", status: "left" });
 	await addPlanting(owner, operationId, { crop: "plum" });
 	const viewer = growerOf(operationId);
-	expect(await as(viewer, (trx) => listOwnPlantings(trx, viewer, operationId))).toBeUndefined();
+	expect(await as(viewer, (trx) => listPlantings(trx, viewer, operationId))).toBeUndefined();
 });
