@@ -4,6 +4,7 @@ import { useTranslation } from "react-i18next";
 import { Links, Meta, Outlet, Scripts, ScrollRestoration, useMatches } from "react-router";
 import type { Route } from "./+types/root";
 import { sessionContext, sessionMiddleware } from "#app/auth/session.server.ts";
+import { surveyInHandMiddleware } from "#app/auth/survey-in-hand.server.ts";
 import { visitorContext, visitorMiddleware } from "#app/auth/visitor.server.ts";
 import { RefusalPage } from "#app/components/refusal-page.tsx";
 import { type ShellData, useDemo } from "#app/components/shell-data.ts";
@@ -20,6 +21,7 @@ export const middleware: Route.MiddlewareFunction[] = [
 		Object.assign(getInstance(context).options, { demo: env().DEMO });
 		return next();
 	},
+	surveyInHandMiddleware,
 	sessionMiddleware,
 	visitorMiddleware,
 ];

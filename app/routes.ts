@@ -126,6 +126,7 @@ export default [
 			...prefix("surveys/:surveyId", [
 				layout("routes/desk/survey-layout.tsx", [
 					index("routes/desk/survey.tsx"),
+					route("rehearsal", "routes/desk/rehearsal.tsx"),
 					route("brief", "routes/desk/brief.tsx"),
 					route("mailing", "routes/desk/mailing.tsx"),
 					route("mailing/:kind", "routes/desk/mail-preview.tsx"),

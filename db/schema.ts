@@ -396,6 +396,7 @@ export interface CollectSurvey {
   crop_keys: string[];
   form_version_id: string;
   opened_at: Timestamp | null;
+  rehearsal_of: string | null;
   season: number;
   survey_id: Generated<string>;
   title: Json;
@@ -544,6 +545,7 @@ export interface DirectoryOperation {
   operation_id: Generated<string>;
   owner_id: string;
   phone: string | null;
+  rehearsal_id: string | null;
   state_fips: string;
   status: Generated<string>;
   updated_at: Generated<Timestamp>;

@@ -2,6 +2,7 @@ import type { MiddlewareFunction, RouterContextProvider } from "react-router";
 import { refusal } from "#app/lib/refusal.ts";
 import { scopedTransaction, type Scope, type Trx } from "./scope.server.ts";
 import type { Associate, Coordinator, Grower, Person, Researcher } from "./viewer.ts";
+import { surveyInHandContext } from "./survey-in-hand.server.ts";
 import { visitorContext } from "./visitor.server.ts";
 
 type Context = Readonly<RouterContextProvider>;
@@ -24,7 +25,8 @@ export function requireAssociate(context: Context): Access<Associate> {
 	const { viewer: person } = requirePerson(context);
 	const { stateFips } = context.get(visitorContext).grants;
 	if (stateFips.length === 0) throw refusal("role_needed", { role: "associate" });
-	return access({ ...person, role: "associate", stateFips }, { kind: "desk", stateFips });
+	const surveyId = context.get(surveyInHandContext);
+	return access({ ...person, role: "associate", stateFips }, { kind: "desk", stateFips, surveyId });
 }
 
 /**
@@ -53,7 +55,8 @@ export function requireGrower(context: Context, place: { surveyId: string; opera
 	const { link, person, grants } = context.get(visitorContext);
 	if (link && link.surveyId === place.surveyId && link.operationId === place.operationId) {
 		const operationIds = [link.operationId];
-		return access({ role: "grower", operationIds, link, person: null }, { kind: "grower", operationIds });
+		const scope = { kind: "grower", operationIds, surveyId: link.surveyId } as const;
+		return access({ role: "grower", operationIds, link, person: null }, scope);
 	}
 	if (person && grants.operationIds.length > 0) return requireOrchard(context);
 	if (link || person) throw refusal("survey_not_found");

@@ -17,6 +17,8 @@ export const logActions = {
 		"link_replaced",
 		"form_changed",
 		"weighted",
+		"rehearsed",
+		"rehearsal_discarded",
 	],
 	form: ["created", "published", "dropped"],
 	operation: [

@@ -7,13 +7,15 @@ import { serviceAway } from "#app/lib/service-away.server.ts";
 /**
  * Who a transaction works for. Row-level security on `directory` and `collect` reads it, as a second wall under the checks
  * in code: `desk` sees granted states, `grower` its own operations, `network` (jobs, the release's figures) all rows,
- * `none` (sessions, sign-in, access requests) no row of either schema.
+ * `none` (sessions, sign-in, access requests) no row of either schema. `surveyId` is the survey in hand: a rehearsal and its
+ * invented operations are seen by no transaction but one that has it in hand.
  */
-export type Scope =
+export type Scope = (
 	| { kind: "desk"; stateFips: string[] }
 	| { kind: "grower"; operationIds: string[] }
 	| { kind: "network" }
-	| { kind: "none" };
+	| { kind: "none" }
+) & { surveyId?: string };
 
 export type Trx = Transaction<DB>;
 
@@ -47,6 +49,12 @@ export async function setScope(trx: Trx, scope: Scope): Promise<void> {
 		set_config('tallygrove.states', ${states}, true), set_config('tallygrove.operations', ${operations}, true)`.execute(
 		trx,
 	);
+	if (scope.surveyId !== undefined) await setSurveyInHand(trx, scope.surveyId);
+}
+
+/** Names the survey that the rest of a transaction works on. A change of scope leaves it. */
+export async function setSurveyInHand(trx: Trx, surveyId: string): Promise<void> {
+	await sql`select set_config('tallygrove.survey', ${surveyId}, true)`.execute(trx);
 }
 
 /**

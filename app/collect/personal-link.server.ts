@@ -1,5 +1,5 @@
 import { createHash, randomBytes } from "node:crypto";
-import type { Trx } from "#app/auth/scope.server.ts";
+import { setSurveyInHand, type Trx } from "#app/auth/scope.server.ts";
 
 export type NewPersonalLink = { surveyId: string; operationId: string; mailingId?: string; expiresAt: Date };
 /** What a link opens; nothing of it is told to whoever holds a token that opens nothing. */
@@ -57,6 +57,13 @@ export async function findLink(trx: Trx, token: string): Promise<FoundLink | und
 	// A token of another length cannot be ours; the query would only say so later.
 	if (!/^[A-Za-z0-9_-]{43}$/.test(token)) return undefined;
 	const now = new Date();
+	const known = await trx
+		.selectFrom("collect.personal_link")
+		.select("survey_id")
+		.where("token_hash", "=", hashOf(token))
+		.executeTakeFirst();
+	if (!known) return undefined;
+	await setSurveyInHand(trx, known.survey_id);
 	const row = await trx
 		.selectFrom("collect.personal_link as link")
 		.innerJoin("collect.survey as survey", "survey.survey_id", "link.survey_id")

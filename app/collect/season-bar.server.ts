@@ -10,7 +10,7 @@ export async function listBarSurveys(trx: Trx, viewer: Associate) {
 			eb.selectFrom("collect.survey_state as g").select("g.survey_id").where("g.state_fips", "in", viewer.stateFips),
 		)
 		.where("s.archived_at", "is", null)
-		.select(["s.survey_id", "s.season", "s.title", "s.opened_at", "s.closed_at", "s.closes_at"])
+		.select(["s.survey_id", "s.season", "s.title", "s.opened_at", "s.closed_at", "s.closes_at", "s.rehearsal_of"])
 		.orderBy("s.season", "desc")
 		.orderBy("s.created_at", "desc")
 		.orderBy("s.survey_id")
@@ -20,6 +20,7 @@ export async function listBarSurveys(trx: Trx, viewer: Associate) {
 		season: row.season,
 		title: row.title as Words,
 		state: barState(row, new Date()),
+		isRehearsal: row.rehearsal_of !== null,
 	}));
 }
 

@@ -20,7 +20,8 @@ export async function openSurvey(trx: Trx, viewer: Associate, surveyId: string, 
 	if (survey.openedAt) return "already_open" as const;
 	if (survey.statesNotHeld.length > 0) return "states_not_held" as const;
 	if (survey.closesAt <= new Date()) return "closing_past" as const;
-	const operations = await freezeFrame(trx, surveyId, survey.stateFips, survey.cropKeys);
+	await endRehearsal(trx, surveyId);
+	const operations = await freezeFrame(trx, survey);
 	if (operations === 0) return "nobody_in_frame" as const;
 	await trx
 		.updateTable("collect.survey")
@@ -96,12 +97,22 @@ async function lockSurvey(trx: Trx, viewer: Associate, surveyId: string) {
 	return findSurvey(trx, viewer, surveyId);
 }
 
-async function freezeFrame(trx: Trx, surveyId: string, stateFips: string[], cropKeys: string[]): Promise<number> {
+/** Deletes the rehearsal of a survey with all that came of it, if there is one. The caller has asked whether it may. */
+export async function endRehearsal(trx: Trx, surveyId: string): Promise<void> {
+	await sql`select collect.discard_rehearsal(r.id) from collect.rehearsal_of(${surveyId}::uuid) as r (id)
+		where r.id is not null`.execute(trx);
+}
+
+type FrameOf = { surveyId: string; stateFips: string[]; cropKeys: string[]; rehearsalId?: string };
+
+/** Freezes a frame of the directory's operations, or of those invented for a rehearsal; never of both. */
+export async function freezeFrame(trx: Trx, { surveyId, stateFips, cropKeys, rehearsalId }: FrameOf): Promise<number> {
 	const rows = await trx
 		.selectFrom("directory.operation as o")
 		.innerJoin("directory.planting as p", "p.operation_id", "o.operation_id")
 		.innerJoin("directory.state as s", "s.state_fips", "o.state_fips")
 		.where("o.status", "=", "active")
+		.where("o.rehearsal_id", rehearsalId ? "=" : "is", rehearsalId ?? null)
 		.where("o.state_fips", "in", stateFips)
 		.where("p.crop_key", "in", cropKeys)
 		.where("p.removed_on", "is", null)

@@ -60,6 +60,7 @@ function selectSurveys(trx: Trx, viewer: Associate) {
 			"s.archived_at",
 			"s.created_by",
 			"s.weighting",
+			"s.rehearsal_of",
 			sql<Words>`v.definition -> 'title'`.as("form_title"),
 			sql<number>`(v.definition ->> 'minutes')::int`.as("minutes"),
 			sql<
@@ -107,6 +108,8 @@ function toSurvey(row: SurveyRow, viewer: Associate) {
 		openedAt: row.opened_at,
 		closedAt: row.closed_at,
 		archivedAt: row.archived_at,
+		/** The draft that it is a rehearsal of: invented operations answer it, and nothing of it is ever released. */
+		rehearsalOf: row.rehearsal_of,
 		state,
 		inFrame: row.in_frame ?? 0,
 		answered: row.answered ?? 0,

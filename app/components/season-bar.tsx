@@ -4,7 +4,13 @@ import { useFormat } from "#app/i18n/use-format.ts";
 import { classes } from "./classes.ts";
 import { StatusBadge } from "./status-badge.tsx";
 
-type BarSurvey = { surveyId: string; season: number; title: string; state: "draft" | "open" | "closed" };
+type BarSurvey = {
+	surveyId: string;
+	season: number;
+	title: string;
+	state: "draft" | "open" | "closed";
+	isRehearsal: boolean;
+};
 type SeasonBarProps = { surveys: BarSurvey[]; stateFips: string[] };
 
 const tones = { draft: "neutral", open: "good", closed: "neutral" } as const;
@@ -30,6 +36,7 @@ export function SeasonBar({ surveys, stateFips }: SeasonBarProps) {
 					<summary className="inline-flex min-h-11 items-center gap-3">
 						<span className="text-lg font-bold">{current.season}</span>
 						<span>{current.title}</span>
+						{current.isRehearsal && <StatusBadge tone="attention">{t("seasonBar.rehearsal")}</StatusBadge>}
 						<span aria-hidden="true">▾</span>
 						<span className="sr-only">{t("seasonBar.choose")}</span>
 					</summary>
@@ -62,6 +69,7 @@ function SurveyList({ surveys, currentId }: { surveys: BarSurvey[]; currentId: s
 					>
 						<span className="font-bold">{survey.season}</span>
 						<span className="flex-1">{survey.title}</span>
+						{survey.isRehearsal && <StatusBadge tone="attention">{t("seasonBar.rehearsal")}</StatusBadge>}
 						<StatusBadge tone={tones[survey.state]}>{t(`surveyState.${survey.state}`)}</StatusBadge>
 					</Link>
 				</li>

@@ -6,9 +6,12 @@ import { compareCrops } from "./crops.ts";
 type Trx = Transaction<DB>;
 const isUuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/i;
 
-/** The one place that says whose operations an associate can see: a condition on `directory.operation o`. */
+/**
+ * The one place that says whose operations an associate can see: a condition on `directory.operation o`. Those that were
+ * invented for a rehearsal are on its pages alone.
+ */
 export function isSeenBy(viewer: Associate) {
-	return sql<boolean>`o.state_fips = any (${viewer.stateFips}::text[])`;
+	return sql<boolean>`(o.state_fips = any (${viewer.stateFips}::text[]) and o.rehearsal_id is null)`;
 }
 
 /** Operations that an associate can see, with all that lists and pages tell of them. */

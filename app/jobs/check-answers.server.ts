@@ -22,7 +22,9 @@ const network = { kind: "network" } as const;
  * them stand now; so the whole survey is gone through again now and then.
  */
 export async function checkAnswers({ surveyId, responseId }: { surveyId: string; responseId: string | null }) {
-	const found = await scopedTransaction(network, async (trx) => {
+	// Without the survey in hand, a rehearsal's answers would not be found.
+	const scope = { kind: "network", surveyId } as const;
+	const found = await scopedTransaction(scope, async (trx) => {
 		const definition = await findSurveyForm(trx, surveyId);
 		const answered = responseId === null ? await listAnswered(trx, surveyId) : await findAnswered(trx, responseId);
 		if (!definition || answered.length === 0) return null;
@@ -30,7 +32,7 @@ export async function checkAnswers({ surveyId, responseId }: { surveyId: string;
 	});
 	if (!found) return;
 	// One transaction a response: a survey's growers go on answering meanwhile.
-	for (const one of found.answered) await scopedTransaction(network, (trx) => checkResponse(trx, one, found.checking));
+	for (const one of found.answered) await scopedTransaction(scope, (trx) => checkResponse(trx, one, found.checking));
 }
 
 /** How long after its closing a survey's answers are still gone through. */

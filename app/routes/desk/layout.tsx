@@ -19,11 +19,12 @@ export async function loader({ context }: Route.LoaderArgs) {
 	const surveys = await desk.transaction((trx) => listBarSurveys(trx, desk.viewer));
 	return {
 		stateFips: desk.viewer.stateFips,
-		surveys: surveys.map(({ surveyId, season, title, state }) => ({
+		surveys: surveys.map(({ surveyId, season, title, state, isRehearsal }) => ({
 			surveyId,
 			season,
 			title: wordsIn(title, language),
 			state,
+			isRehearsal,
 		})),
 	};
 }

@@ -116,6 +116,13 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 		<>
 			<ErrorSummary problems={actionData?.problems} labels={closingLabels(t)} />
 			{actionData?.refused && <Notice tone="attention">{t(`survey.refused.${actionData.refused}`)}</Notice>}
+			{survey.state === "draft" && survey.statesNotHeld.length === 0 && (
+				<Notice tone="info" title={t("rehearsal.offer")}>
+					<Link to={href("/desk/surveys/:surveyId/rehearsal", { surveyId: survey.surveyId })}>
+						{t("rehearsal.offerLink")}
+					</Link>
+				</Notice>
+			)}
 			{survey.archivedAt && <Notice tone="info">{t("survey.isArchived")}</Notice>}
 			{survey.state !== "draft" && (
 				<div className="mb-5">
@@ -162,9 +169,9 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 					)}
 					{survey.state === "open" && survey.mayManage && <StepButton step="close" />}
 				</Form>
-				{survey.state === "closed" && <p>{t("survey.closedNext")}</p>}
+				{survey.state === "closed" && !survey.rehearsalOf && <p>{t("survey.closedNext")}</p>}
 			</Section>
-			{survey.state !== "draft" && (
+			{survey.state !== "draft" && !survey.rehearsalOf && (
 				<Section title={t("survey.afterwards")}>
 					<Form method="post" className="flex flex-wrap gap-4">
 						<StepButton step="copy" />
