@@ -25,7 +25,7 @@ export function requireAssociate(context: Context): Access<Associate> {
 	const { viewer: person } = requirePerson(context);
 	const { stateFips } = context.get(visitorContext).grants;
 	if (stateFips.length === 0) throw refusal("role_needed", { role: "associate" });
-	const surveyId = context.get(surveyInHandContext);
+	const surveyId = context.get(surveyInHandContext) ?? undefined;
 	return access({ ...person, role: "associate", stateFips }, { kind: "desk", stateFips, surveyId });
 }
 

@@ -1,8 +1,8 @@
 import { createContext, type MiddlewareFunction } from "react-router";
 import { z } from "zod";
 
-/** The survey that a request's address names, if it names one. */
-export const surveyInHandContext = createContext<string | undefined>(undefined);
+/** The survey that a request's address names, or null. */
+export const surveyInHandContext = createContext<string | null>(null);
 
 export const surveyInHandMiddleware: MiddlewareFunction<Response> = ({ context, params }, next) => {
 	const surveyId = z.guid().safeParse(params.surveyId);

@@ -197,11 +197,12 @@ test("only who holds every state of a survey rehearses it or throws its rehearsa
 	expect(await inHand(iowa, rehearsalId, discarded)).toBe("states_not_held");
 	const byHand = (trx: Trx) => sql`select collect.discard_rehearsal(${rehearsalId}::uuid)`.execute(trx);
 	await expect(inHand(iowa, rehearsalId, byHand)).rejects.toThrow("no rehearsal to throw away");
-	expect((await testGrowers(both, rehearsalId)).map(({ statePostal }) => statePostal)).toEqual([
-		...["IA", "IA", "IA"],
-		...["WI", "WI", "WI"],
-	]);
+	const states = (await testGrowers(both, rehearsalId)).map(({ statePostal }) => statePostal);
+	expect(states.join(" ")).toBe("IA IA IA WI WI WI");
 });
+
+const refused = (query: string, values: unknown[], why: string) =>
+	expect(owner.query(query, values)).rejects.toThrow(why);
 
 test("the database lets no rehearsal be drafted, mailed or mixed with growers, whoever asks", async () => {
 	const draft = await makeDraft(iowa, ["19"]);
@@ -211,8 +212,6 @@ test("the database lets no rehearsal be drafted, mailed or mixed with growers, w
 	expect(await inHand(iowa, rehearsalId, (trx) => closeSurvey(trx, iowa, rehearsalId))).toBe("closed");
 	const drafted = (trx: Trx) => createDraft(trx, iowa, rehearsalId, {} as never);
 	await expect(inHand(iowa, rehearsalId, drafted)).rejects.toThrow("a rehearsal has no release_draft");
-	const refused = async (query: string, values: unknown[], why: string) =>
-		expect(owner.query(query, values)).rejects.toThrow(why);
 	await refused(
 		"insert into collect.release_draft (survey_id, rules, drafted_by) values ($1, '{}', $2)",
 		[rehearsalId, iowa.personId],

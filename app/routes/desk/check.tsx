@@ -19,6 +19,7 @@ import { useToldWords } from "./parts/checks/finding-words.ts";
 import { viewFinding } from "./parts/checks/finding-view.server.ts";
 import { FindingState } from "./parts/checks/queue-table.tsx";
 import { takeDecision } from "./parts/checks/take-decision.server.ts";
+import { GrowerLink } from "./parts/grower-link.tsx";
 import { useGrowerName } from "./parts/grower-name.ts";
 
 /** `?do=correct&at=0`: which of the forms stands open, for one of the answers. */
@@ -89,7 +90,7 @@ export default function Check({ loaderData, actionData, params }: Route.Componen
 					<FindingState finding={finding} />
 				</p>
 				<p className="mt-3">
-					<Link to={href("/desk/growers/:operationId", { operationId: finding.operationId })}>{name}</Link>
+					<GrowerLink operationId={finding.operationId}>{name}</GrowerLink>
 					{" · "}
 					{[finding.contactName, finding.phone].filter(Boolean).join(" · ")}
 					{" · "}

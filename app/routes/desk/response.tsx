@@ -13,6 +13,7 @@ import { useFormat } from "#app/i18n/use-format.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { listResponseDecisions } from "./parts/checks/response-decisions.server.ts";
 import { ResponseDecisions } from "./parts/checks/response-decisions.tsx";
+import { GrowerLink } from "./parts/grower-link.tsx";
 import { useGrowerName } from "./parts/grower-name.ts";
 
 const Version = z.coerce.number().int().optional().catch(undefined);
@@ -46,9 +47,9 @@ export default function ResponsePage({ loaderData: response, params }: Route.Com
 						{
 							term: t("growers.name"),
 							detail: (
-								<Link to={href("/desk/growers/:operationId", { operationId })} className="print-plain">
+								<GrowerLink operationId={operationId} className="print-plain">
 									{operationName}
-								</Link>
+								</GrowerLink>
 							),
 						},
 						{ term: t("growers.contact"), detail: response.contactName },

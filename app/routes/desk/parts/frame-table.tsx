@@ -1,11 +1,11 @@
 import { useTranslation } from "react-i18next";
-import { href, Link } from "react-router";
 import type { Disposition, FrameRow } from "#app/collect/frame-list.server.ts";
 import { DataTable, type Sort } from "#app/components/data-table.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { AnsweredLink } from "./answered-link.tsx";
+import { GrowerLink } from "./grower-link.tsx";
 import { useGrowerName } from "./grower-name.ts";
 import { MailState } from "./mail-state.tsx";
 
@@ -75,9 +75,9 @@ function Grower({ row: { operationId, name, contactName, phone } }: { row: Frame
 	const nameOf = useGrowerName();
 	return (
 		<>
-			<Link to={href("/desk/growers/:operationId", { operationId })} className="print-plain">
+			<GrowerLink operationId={operationId} className="print-plain">
 				{nameOf(name)}
-			</Link>
+			</GrowerLink>
 			<span className="block text-xs text-quiet">{[contactName, phone].filter(Boolean).join(" · ")}</span>
 		</>
 	);

@@ -5,6 +5,7 @@ import type { Contact } from "#app/collect/contacts.server.ts";
 import { Button, ButtonLink } from "#app/components/button.tsx";
 import { Section } from "#app/components/section.tsx";
 import type { FormValues, Problem } from "#app/lib/parse-form.ts";
+import { GrowerLink } from "../grower-link.tsx";
 import { useGrowerName } from "../grower-name.ts";
 import { ContactFields } from "../growers/contact-fields.tsx";
 import { ContactTable } from "../growers/contacts.tsx";
@@ -66,12 +67,9 @@ export function CallCard({ call, surveyId, isOpen, values, problems }: CallCardP
 						>
 							{t("paper.one")}
 						</Link>
-						<Link
-							to={href("/desk/growers/:operationId", { operationId })}
-							className="inline-flex min-h-11 items-center"
-						>
+						<GrowerLink operationId={operationId} className="inline-flex min-h-11 items-center">
 							{t("calls.toGrower")}
-						</Link>
+						</GrowerLink>
 					</div>
 				</Form>
 			</Section>

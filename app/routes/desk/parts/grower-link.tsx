@@ -1,0 +1,16 @@
+import type { ReactNode } from "react";
+import { href, Link, useRouteLoaderData } from "react-router";
+import type { loader } from "../survey-layout.tsx";
+
+type GrowerLinkProps = { operationId: string; className?: string; children: ReactNode };
+
+/** The way from a survey's pages to a grower's. The invented growers of a rehearsal have no page. */
+export function GrowerLink({ operationId, className, children }: GrowerLinkProps) {
+	const survey = useRouteLoaderData<typeof loader>("routes/desk/survey-layout");
+	if (survey?.isRehearsal) return children;
+	return (
+		<Link to={href("/desk/growers/:operationId", { operationId })} className={className}>
+			{children}
+		</Link>
+	);
+}
