@@ -38,9 +38,9 @@ export async function rehearseSurvey(
 	await endRehearsal(trx, surveyId);
 	const rehearsalId = randomUUID();
 	await setSurveyInHand(trx, rehearsalId);
-	await sql`insert into collect.survey (survey_id, form_version_id, season, title, crop_keys, closes_at, created_by,
-			opened_at, rehearsal_of)
-		select ${rehearsalId}::uuid, form_version_id, season, title, crop_keys,
+	await sql`insert into collect.survey (survey_id, form_version_id, season, title, crop_keys, weighting, closes_at,
+			created_by, opened_at, rehearsal_of)
+		select ${rehearsalId}::uuid, form_version_id, season, title, crop_keys, weighting,
 			greatest(closes_at, now() + make_interval(days => ${leastDays})), ${viewer.personId}::uuid, now(), survey_id
 		from collect.survey where survey_id = ${surveyId}`.execute(trx);
 	await trx
