@@ -170,6 +170,7 @@ export default [
 	]),
 
 	route("network/log.csv", "routes/network/log-csv.ts"),
+	route("network/impact.csv", "routes/network/impact-csv.ts"),
 	...prefix("network", [
 		layout("routes/network/layout.tsx", [
 			index("routes/network/people.tsx"),
@@ -179,6 +180,7 @@ export default [
 			route("reports/:reportId", "routes/network/report.tsx"),
 			route("access", "routes/network/access.tsx"),
 			route("settings", "routes/network/settings.tsx"),
+			route("impact", "routes/network/impact.tsx"),
 			route("log", "routes/network/log.tsx"),
 		]),
 	]),

@@ -693,6 +693,13 @@ export interface ReadershipMailing {
   tried_at: Timestamp | null;
 }
 
+export interface ReadershipReportRead {
+  kind: string;
+  read_on: string;
+  report_id: string;
+  times: number;
+}
+
 export interface ReadershipRequest {
   crop_keys: Generated<string[]>;
   email: string;
@@ -858,6 +865,7 @@ export interface DB {
   "publish.report_file": PublishReportFile;
   "publish.report_photo": PublishReportPhoto;
   "readership.mailing": ReadershipMailing;
+  "readership.report_read": ReadershipReportRead;
   "readership.request": ReadershipRequest;
   "readership.subscriber": ReadershipSubscriber;
   "release.area": ReleaseArea;

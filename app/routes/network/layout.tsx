@@ -41,6 +41,7 @@ function NetworkFrame({ children }: { children: ReactNode }) {
 				{ to: "/network/releases", label: t("nav.releases") },
 				{ to: "/network/reports", label: t("nav.reports") },
 				{ to: "/network/access", label: t("nav.access") },
+				{ to: "/network/impact", label: t("nav.impact") },
 				{ to: "/network/settings", label: t("nav.settings") },
 				{ to: "/network/log", label: t("nav.log") },
 			]}

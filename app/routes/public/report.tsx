@@ -2,6 +2,7 @@ import { useTranslation } from "react-i18next";
 import { href, Link } from "react-router";
 import { z } from "zod";
 import type { Route } from "./+types/report";
+import { countRead } from "#app/auth/report-reads.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
@@ -30,6 +31,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	if (!report || !release) throw refusal("report_not_found");
 	// The report's own words speak of figures that are gone: none of them leaves the server.
 	if (release.withdrawn) return { withdrawn: release, page: null };
+	countRead(request, report.reportId);
 	const [told, versions, files] = await Promise.all([
 		resolveReport(report.content, release),
 		listVersions(report.slug),
