@@ -22,6 +22,7 @@ export default [
 		route("data/:release", "routes/public/data-release.tsx"),
 		route("api", "routes/public/api.tsx"),
 
+		route("invitation/:token", "routes/public/invitation.tsx"),
 		route("sign-in", "routes/public/sign-in.tsx"),
 		route("sign-out", "routes/public/sign-out.tsx"),
 		route("me", "routes/public/me.tsx"),
@@ -174,6 +175,8 @@ export default [
 	...prefix("network", [
 		layout("routes/network/layout.tsx", [
 			index("routes/network/people.tsx"),
+			route("grants/:roleGrantId", "routes/network/grant.tsx"),
+			route("invitations", "routes/network/invitations.tsx"),
 			route("releases", "routes/network/releases.tsx"),
 			route("releases/:draftId", "routes/network/release.tsx"),
 			route("reports", "routes/network/reports.tsx"),

@@ -59,6 +59,25 @@ export interface AuthChangeMailing {
   tried_at: Timestamp | null;
 }
 
+export interface AuthInvitation {
+  accepted_at: Timestamp | null;
+  accepted_by: string | null;
+  email: string;
+  ends_on: string | null;
+  expires_at: Timestamp;
+  failed_as: string | null;
+  invitation_id: Generated<string>;
+  invited_at: Generated<Timestamp>;
+  invited_by: string;
+  language: string;
+  role: string;
+  sent_at: Timestamp | null;
+  state_fips: Generated<string[]>;
+  token_hash: string | null;
+  withdrawn_at: Timestamp | null;
+  withdrawn_by: string | null;
+}
+
 export interface AuthPerson {
   created_at: Generated<Timestamp>;
   display_name: string;
@@ -78,6 +97,8 @@ export interface AuthReleaseFollow {
 }
 
 export interface AuthRoleGrant {
+  end_told_at: Timestamp | null;
+  ends_on: string | null;
   granted_at: Generated<Timestamp>;
   granted_by: string | null;
   operation_id: string | null;
@@ -808,6 +829,7 @@ export interface DB {
   "auth.access_request": AuthAccessRequest;
   "auth.api_key": AuthApiKey;
   "auth.change_mailing": AuthChangeMailing;
+  "auth.invitation": AuthInvitation;
   "auth.person": AuthPerson;
   "auth.release_follow": AuthReleaseFollow;
   "auth.role_grant": AuthRoleGrant;

@@ -2,7 +2,14 @@ import { logEvent } from "./event-log.server.ts";
 import type { Trx } from "./scope.server.ts";
 
 /** Who the provider says has signed in. Issuer and subject are the key; name and address are only shown. */
-export type Identity = { issuer: string; subject: string; displayName: string; email: string | null };
+export type Identity = {
+	issuer: string;
+	subject: string;
+	displayName: string;
+	email: string | null;
+	/** True where the provider itself has verified the address; never kept, as it is only asked for at the sign-in. */
+	emailVerified?: boolean;
+};
 
 export type Account = {
 	personId: string;

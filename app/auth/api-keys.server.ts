@@ -2,6 +2,7 @@ import { createHash, randomBytes } from "node:crypto";
 import { sql } from "kysely";
 import { z } from "zod";
 import { logEvent } from "./event-log.server.ts";
+import { grantHolds } from "./grant-holds.server.ts";
 import { scopedTransaction } from "./scope.server.ts";
 import type { Researcher } from "./viewer.ts";
 
@@ -131,7 +132,7 @@ export function checkApiKey(key: string): Promise<KnownKey | "not_valid" | "expi
 			.where("k.key_hash", "=", hash(key))
 			.where("k.revoked_at", "is", null)
 			.where("g.role", "=", "researcher")
-			.where("g.revoked_at", "is", null)
+			.where(grantHolds("g"))
 			.executeTakeFirst();
 		if (!row) return "not_valid";
 		if (row.expires_at <= new Date()) return "expired";

@@ -28,7 +28,7 @@ export async function forgetGrantees(trx: Trx, operationId: string): Promise<str
 		// Whoever holds another grant, or ever worked here or asked for data, has an account for that too.
 		.where(
 			sql<boolean>`not exists (select from auth.role_grant g where g.person_id = p.person_id
-				and (g.role <> 'grower' or g.revoked_at is null))
+				and (g.role <> 'grower' or auth.grant_holds(g.revoked_at, g.ends_on)))
 			and not exists (select from auth.access_request a where a.person_id = p.person_id)`,
 		)
 		.returning("p.person_id")

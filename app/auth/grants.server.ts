@@ -1,5 +1,8 @@
+import { sql } from "kysely";
 import { z } from "zod";
 import { logEvent } from "./event-log.server.ts";
+import { closeEndedGrants, lastDay, lastDayProblem, lockBesideCoordinators } from "./grant-end.server.ts";
+import { grantHolds } from "./grant-holds.server.ts";
 import { type Trx, underScope } from "./scope.server.ts";
 import type { Coordinator } from "./viewer.ts";
 
@@ -15,6 +18,7 @@ export const GrantForm = z.discriminatedUnion("step", [
 			.optional(),
 		/** Read for growers only: the operation's id, or its e-mail address where no other has the same. */
 		operation: z.string().trim().max(254, "too_long").optional(),
+		endsOn: lastDay,
 	}),
 	z.object({ step: z.literal("revoke"), roleGrantId: z.uuid("choice_wrong") }),
 ]);
@@ -30,15 +34,16 @@ export async function listPeople(trx: Trx, _viewer: Coordinator) {
 		.orderBy("person_id")
 		.execute();
 	const grants = await trx
-		.selectFrom("auth.role_grant")
+		.selectFrom("auth.role_grant as g")
 		.select([
 			"role_grant_id as roleGrantId",
 			"person_id as personId",
 			"role",
 			"state_fips as stateFips",
 			"operation_id as operationId",
+			sql<string | null>`ends_on::text`.as("endsOn"),
 		])
-		.where("revoked_at", "is", null)
+		.where(grantHolds("g"))
 		.orderBy("role")
 		.orderBy("state_fips")
 		.execute();
@@ -104,13 +109,11 @@ export async function grantRole(trx: Trx, viewer: Coordinator, grant: NewGrant) 
 	if (!person) return "not_found" as const;
 	const place = await placeOf(trx, grant);
 	if (typeof place === "string") return place;
-	const row = await trx
-		.insertInto("auth.role_grant")
-		.values({ person_id: grant.personId, role: grant.role, ...place.column, granted_by: viewer.personId })
-		.onConflict((conflict) => conflict.doNothing())
-		.returning("role_grant_id")
-		.executeTakeFirst();
-	if (!row) return "granted" as const;
+	const problem = await lastDayProblem(trx, grant.endsOn);
+	if (problem) return problem;
+	const { personId, role, endsOn } = grant;
+	const added = await addGrant(trx, { personId, role, ...place.for, endsOn, grantedBy: viewer.personId });
+	if (added !== "added") return added === "held_so" ? ("granted" as const) : ("already_held" as const);
 	await logEvent(trx, {
 		personId: viewer.personId,
 		action: "grant.given",
@@ -122,32 +125,61 @@ export async function grantRole(trx: Trx, viewer: Coordinator, grant: NewGrant) 
 	return "granted" as const;
 }
 
+type AddedGrant = {
+	personId: string;
+	role: NewGrant["role"];
+	stateFips?: string | null;
+	operationId?: string | null;
+	endsOn?: string | null | undefined;
+	grantedBy: string;
+};
+
+/**
+ * Adds a grant unless the same holds already, whose last day is then left as it is. Logging is the caller's.
+ * @returns `held_so` where it holds with this very last day, `held` where with another.
+ */
+export async function addGrant(trx: Trx, { personId, role, grantedBy, ...more }: AddedGrant) {
+	const endsOn = more.endsOn ?? null;
+	const place = { state_fips: more.stateFips ?? null, operation_id: more.operationId ?? null };
+	// One that has ended by itself and is not noted yet would stand in the way.
+	await closeEndedGrants(trx, personId);
+	const row = await trx
+		.insertInto("auth.role_grant")
+		.values({ person_id: personId, role, ...place, ends_on: endsOn, granted_by: grantedBy })
+		.onConflict((conflict) => conflict.doNothing())
+		.returning("role_grant_id")
+		.executeTakeFirst();
+	if (row) return "added" as const;
+	const held = await trx
+		.selectFrom("auth.role_grant")
+		.select(sql<string | null>`ends_on::text`.as("endsOn"))
+		.where("person_id", "=", personId)
+		.where("role", "=", role)
+		.where("state_fips", "is not distinct from", place.state_fips)
+		.where("operation_id", "is not distinct from", place.operation_id)
+		.where("revoked_at", "is", null)
+		.executeTakeFirst();
+	return held?.endsOn === endsOn ? ("held_so" as const) : ("held" as const);
+}
+
 /** What a grant is for: an associate's state, a grower's operation, for others the whole network. */
 async function placeOf(trx: Trx, { role, stateFips, operation }: NewGrant) {
 	if (role === "associate") {
 		if (!stateFips || !(await listStates(trx)).includes(stateFips)) return "state_needed" as const;
-		return { column: { state_fips: stateFips }, stateFips };
+		return { for: { stateFips }, stateFips };
 	}
-	if (role !== "grower") return { column: {}, stateFips: null };
+	if (role !== "grower") return { for: {}, stateFips: null };
 	if (!operation) return "operation_needed" as const;
 	const found = await findOperationNamed(trx, operation);
 	if (typeof found === "string") return found;
-	return { column: { operation_id: found.operation_id }, stateFips: found.state_fips };
+	return { for: { operationId: found.operation_id }, stateFips: found.state_fips };
 }
 
-/** Ends a grant at once. The last coordinator's stays, since nobody could give it back. */
+/** Ends a grant at once. The last coordinator's without a last day stays, since nobody could give it back. */
 export async function revokeGrant(trx: Trx, viewer: Coordinator, roleGrantId: string) {
-	const held = await trx
-		.selectFrom("auth.role_grant")
-		.select(["role_grant_id", "person_id", "role", "state_fips"])
-		.where("revoked_at", "is", null)
-		.where((eb) => eb.or([eb("role_grant_id", "=", roleGrantId), eb("role", "=", "coordinator")]))
-		.forUpdate()
-		.execute();
-	const grant = held.find((row) => row.role_grant_id === roleGrantId);
+	const { grant, anotherStays } = await lockBesideCoordinators(trx, roleGrantId);
 	if (!grant) return "not_found" as const;
-	if (grant.role === "coordinator" && held.filter((row) => row.role === "coordinator").length === 1)
-		return "last_coordinator" as const;
+	if (grant.role === "coordinator" && grant.ends_on === null && !anotherStays) return "last_coordinator" as const;
 	await trx
 		.updateTable("auth.role_grant")
 		.set({ revoked_at: new Date(), revoked_by: viewer.personId })

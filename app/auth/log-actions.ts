@@ -1,7 +1,8 @@
 /** Everything that is logged, by subject. Each has its words in `network:log.action.<subject>.<verb>`. */
 export const logActions = {
 	auth: ["signed_in", "sign_in_failed"],
-	grant: ["first_coordinator", "given", "revoked"],
+	grant: ["first_coordinator", "given", "end_set", "ended", "revoked"],
+	invitation: ["sent", "sent_again", "withdrawn", "accepted"],
 	access: ["requested", "approved", "declined"],
 	survey: [
 		"created",

@@ -32,6 +32,8 @@ const Userinfo = z.object({
 	sub: z.string().min(1).max(255),
 	name: z.string().trim().max(200).optional().catch(undefined),
 	email: z.email().max(254).optional().catch(undefined),
+	/** A yes in any other form is none. */
+	email_verified: z.literal(true).optional().catch(undefined),
 });
 
 let ready: Promise<Authenticator<Identity>> | undefined;
@@ -79,8 +81,8 @@ async function readIdentity(endpoint: string, issuer: string, token: string): Pr
 	const answer = await fetchJson(endpoint, { authorization: `Bearer ${token}` });
 	const parsed = Userinfo.safeParse(answer);
 	if (!parsed.success) throw new SignInError("failed", parsed.error);
-	const { sub, name, email } = parsed.data;
-	return { issuer, subject: sub, displayName: name || email || sub.slice(0, 200), email: email ?? null };
+	const { sub, name, email, email_verified: emailVerified = false } = parsed.data;
+	return { issuer, subject: sub, displayName: name || email || sub.slice(0, 200), email: email ?? null, emailVerified };
 }
 
 async function fetchJson(url: string, headers: Record<string, string> = {}): Promise<unknown> {

@@ -1,6 +1,7 @@
 import { sql } from "kysely";
 import { z } from "zod";
 import { logEvent } from "./event-log.server.ts";
+import { addGrant } from "./grants.server.ts";
 import { scopedTransaction, type Trx } from "./scope.server.ts";
 import type { Coordinator, Person } from "./viewer.ts";
 
@@ -134,11 +135,8 @@ export async function decideAccess(trx: Trx, viewer: Coordinator, form: z.infer<
 		.executeTakeFirst();
 	if (!request) return "not_found";
 	if (form.decision === "approved") {
-		await trx
-			.insertInto("auth.role_grant")
-			.values({ person_id: request.person_id, role: "researcher", granted_by: viewer.personId })
-			.onConflict((conflict) => conflict.doNothing())
-			.execute();
+		const { person_id: personId } = request;
+		await addGrant(trx, { personId, role: "researcher", grantedBy: viewer.personId });
 	}
 	const subject = { subjectKind: "access_request", subjectId: form.accessRequestId };
 	await logEvent(trx, { personId: viewer.personId, action: `access.${form.decision}`, ...subject });

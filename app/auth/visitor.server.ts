@@ -1,4 +1,5 @@
 import { createContext, type MiddlewareFunction } from "react-router";
+import { grantHolds } from "./grant-holds.server.ts";
 import type { Grants, Person } from "./viewer.ts";
 import { scopedTransaction, type Trx } from "./scope.server.ts";
 import { sessionContext } from "./session.server.ts";
@@ -37,10 +38,10 @@ async function findPerson(trx: Trx, personId: string): Promise<Pick<Visitor, "pe
 		.executeTakeFirst();
 	if (!row) return nobody;
 	const grants = await trx
-		.selectFrom("auth.role_grant")
-		.select(["role", "state_fips", "operation_id"])
-		.where("person_id", "=", personId)
-		.where("revoked_at", "is", null)
+		.selectFrom("auth.role_grant as g")
+		.select(["g.role", "g.state_fips", "g.operation_id"])
+		.where("g.person_id", "=", personId)
+		.where(grantHolds("g"))
 		.execute();
 	return {
 		person: {

@@ -90,7 +90,7 @@ async function readTold(trx: Trx): Promise<Told[]> {
 async function readNow(trx: Trx): Promise<Impact["now"]> {
 	const { rows } = await sql<Impact["now"]>`select
 		(select count(*) from readership.subscriber)::int as subscribers,
-		(select count(distinct person_id) from auth.role_grant where role = 'researcher' and revoked_at is null)::int
+		(select count(distinct person_id) from auth.role_grant where role = 'researcher' and auth.grant_holds(revoked_at, ends_on))::int
 			as members,
 		(select min(read_on)::text from readership.report_read) as "readsSince"`.execute(trx);
 	return rows[0]!;

@@ -21,6 +21,10 @@ export type JobPayloads = {
 	mail_subscriber: { reportId: string; subscriberId: string };
 	confirm_subscription: { requestId: string };
 	sweep_subscriptions: Record<string, unknown>;
+	/** An invitation to a role, and the notice that one ends soon; once a day, what grants have ended. */
+	mail_invitation: { invitationId: string };
+	tell_grant_end: { roleGrantId: string };
+	watch_grant_ends: Record<string, unknown>;
 	/** The files of photos that were taken away. */
 	erase_photos: { fileNames: string[] };
 	sweep_photos: Record<string, unknown>;

@@ -4,9 +4,11 @@ import { languages } from "#app/i18n/language.ts";
 import { letterKinds } from "#app/mail/templates.ts";
 import { checkAnswers, checkSurveys } from "./check-answers.server.ts";
 import { computeReleaseDraft } from "./compute-release-draft.server.ts";
+import { tellGrantEnd, watchGrantEnds } from "./grant-ends.server.ts";
 import { importGrowers, sweepImports } from "./import-growers.server.ts";
 import { makeReleaseFiles } from "./make-release-files.server.ts";
 import { erasePhotoFiles, sweepPhotos } from "./photos.server.ts";
+import { mailInvitation } from "./mail-invitation.server.ts";
 import { confirmSubscription, mailReport, mailSubscriber, sweepSubscriptions } from "./mail-report.server.ts";
 import { printReport } from "./print-report.server.ts";
 import { publishReportAtItsMinute } from "./publish-report.server.ts";
@@ -44,6 +46,9 @@ export const tasks: Record<keyof JobPayloads, Task> = {
 	mail_subscriber: task(z.object({ reportId: z.uuid(), subscriberId: z.uuid() }), mailSubscriber),
 	confirm_subscription: task(z.object({ requestId: z.uuid() }), confirmSubscription),
 	sweep_subscriptions: task(z.looseObject({}), sweepSubscriptions),
+	mail_invitation: task(z.object({ invitationId: z.uuid() }), mailInvitation),
+	tell_grant_end: task(z.object({ roleGrantId: z.uuid() }), tellGrantEnd),
+	watch_grant_ends: task(z.looseObject({}), watchGrantEnds),
 	erase_photos: task(z.object({ fileNames: z.array(z.string().regex(/^[0-9a-f]{32}$/)) }), erasePhotoFiles),
 	sweep_photos: task(z.looseObject({}), sweepPhotos),
 	import_growers: task(
@@ -58,4 +63,5 @@ export const tasks: Record<keyof JobPayloads, Task> = {
 /** What comes round by itself: the minute and hour in UTC. */
 export const crontab = `40 9 * * * sweep_photos ?max=1&fill=1d
 50 9 * * * sweep_imports ?max=1&fill=1d
-15 10 * * * check_surveys ?max=1&fill=1d`;
+15 10 * * * check_surveys ?max=1&fill=1d
+30 10 * * * watch_grant_ends ?max=1&fill=1d`;

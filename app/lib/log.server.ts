@@ -8,7 +8,7 @@ import { pino } from "pino";
 export const log = pino({ name: "tallygrove", level: process.env.LOG_LEVEL ?? "info" });
 
 export function withoutToken(url: string): string {
-	return url.replace(/\/(r|stop-mail)\/[^/?#]+/g, "/$1/…");
+	return url.replace(/\/(r|stop-mail|check|invitation|subscribe|unsubscribe)\/[^/?#]+/g, "/$1/…");
 }
 
 // The server writes its request log through morgan; its `url` token is replaced by one that hides personal links.

@@ -20,6 +20,8 @@ const statusOf = {
 	release_withdrawn: 410,
 	report_not_found: 404,
 	request_not_found: 404,
+	grant_not_found: 404,
+	invitation_not_valid: 404,
 	too_much_text: 413,
 	too_many_tries: 429,
 	form_not_understood: 400,

@@ -27,7 +27,7 @@ export async function grantedStates(trx: Trx, personId: string): Promise<string[
 		.select("state_fips")
 		.where("person_id", "=", personId)
 		.where("role", "=", "associate")
-		.where("revoked_at", "is", null)
+		.where(sql<boolean>`auth.grant_holds(revoked_at, ends_on)`)
 		.execute();
 	return rows.flatMap(({ state_fips }) => state_fips ?? []);
 }

@@ -1,26 +1,28 @@
 import { useTranslation } from "react-i18next";
-import { data, Form, href, redirect } from "react-router";
+import { data, Form, href, Link, redirect } from "react-router";
 import type { Route } from "./+types/people";
 import { requireCoordinator } from "#app/auth/guard.server.ts";
 import { GrantForm, grantRole, listPeople, listStates, revokeGrant } from "#app/auth/grants.server.ts";
+import { listInvitations } from "#app/auth/invitations.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
-import { Button } from "#app/components/button.tsx";
-import { ChoiceField } from "#app/components/choice-field.tsx";
 import { Confirm } from "#app/components/confirm.tsx";
 import { DataTable } from "#app/components/data-table.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
-import { Section } from "#app/components/section.tsx";
-import { TextField } from "#app/components/text-field.tsx";
+import { useFormat } from "#app/i18n/use-format.ts";
 import { lookAgain } from "#app/lib/look-again.ts";
 import { type FormValues, parseForm, type Problem } from "#app/lib/parse-form.ts";
+import { GrantPart } from "./parts/people/grant-part.tsx";
+import { useGrantWords } from "./parts/people/grant-words.ts";
+import { InvitationTable } from "./parts/people/invitation-table.tsx";
 
 export async function loader({ context }: Route.LoaderArgs) {
 	const network = requireCoordinator(context);
 	return network.transaction(async (trx) => ({
 		people: await listPeople(trx, network.viewer),
 		states: await listStates(trx),
+		invitations: await listInvitations(trx, network.viewer),
 	}));
 }
 
@@ -47,6 +49,7 @@ export async function action({ context, request }: Route.ActionArgs) {
 /** What can be mended in a field is said there. */
 function problemOf(outcome: string): Problem | undefined {
 	if (outcome === "operation_needed") return { field: "operation", code: "empty" };
+	if (outcome === "end_past" || outcome === "end_far") return { field: "endsOn", code: outcome };
 	if (outcome === "operation_unknown" || outcome === "operation_several") return { field: "operation", code: outcome };
 	return undefined;
 }
@@ -65,6 +68,7 @@ export default function People({ loaderData, actionData }: Route.ComponentProps)
 					role: t("people.role"),
 					stateFips: t("people.state"),
 					operation: t("people.operation"),
+					endsOn: t("people.endsOn"),
 				}}
 			/>
 			{actionData?.refused && <Notice tone="attention">{t(`people.refused.${actionData.refused}`)}</Notice>}
@@ -94,6 +98,7 @@ export default function People({ loaderData, actionData }: Route.ComponentProps)
 					},
 				]}
 			/>
+			<InvitationTable invitations={loaderData.invitations} />
 			<GrantPart {...loaderData} actionData={actionData} />
 		</Page>
 	);
@@ -103,15 +108,23 @@ type Grant = Route.ComponentProps["loaderData"]["people"][number]["grants"][numb
 
 function GrantLine({ grant }: { grant: Grant }) {
 	const { t } = useTranslation("network");
-	const role = t(`common:role.${grant.role}`);
-	const words = grant.stateFips
-		? t("people.roleIn", { role, state: t(`common:state.${grant.stateFips}`) })
-		: grant.operationName
-			? t("people.roleFor", { role, operation: grant.operationName })
-			: role;
+	const format = useFormat();
+	const words = useGrantWords()(grant);
 	return (
 		<Form method="post" className="mb-2 flex flex-wrap items-center gap-3">
-			<span>{words}</span>
+			<span>
+				{words}
+				{grant.endsOn && (
+					<span className="block text-xs text-quiet">{t("people.until", { day: format.day(grant.endsOn) })}</span>
+				)}
+			</span>
+			<Link
+				to={href("/network/grants/:roleGrantId", { roleGrantId: grant.roleGrantId })}
+				aria-label={t("people.changeEnd", { role: words })}
+				className="inline-flex min-h-11 items-center"
+			>
+				{t("people.changeEndShort")}
+			</Link>
 			<Confirm
 				trigger={t("people.revoke", { role: words })}
 				title={t("people.revokeTitle", { role: words })}
@@ -124,61 +137,5 @@ function GrantLine({ grant }: { grant: Grant }) {
 				<input type="hidden" name="roleGrantId" value={grant.roleGrantId} />
 			</Confirm>
 		</Form>
-	);
-}
-
-type GrantPartProps = Route.ComponentProps["loaderData"] & Pick<Route.ComponentProps, "actionData">;
-
-function GrantPart({ people, states, actionData }: GrantPartProps) {
-	const { t } = useTranslation("network");
-	const values: Record<string, unknown> = actionData?.values ?? {};
-	const field = (name: "personId" | "role" | "stateFips") => ({
-		kind: "select" as const,
-		name,
-		defaultValue: typeof values[name] === "string" ? values[name] : "",
-		problem: actionData?.problems.find((problem) => problem.field === name),
-	});
-	return (
-		<Section title={t("people.grantTitle")}>
-			<Form method="post" noValidate className="grid max-w-xl gap-5">
-				<ChoiceField
-					{...field("personId")}
-					legend={t("people.person")}
-					options={people.map((person) => ({
-						value: person.personId,
-						label: person.email ? `${person.displayName}, ${person.email}` : person.displayName,
-					}))}
-				/>
-				<ChoiceField
-					{...field("role")}
-					legend={t("people.role")}
-					options={(["associate", "grower", "coordinator", "researcher"] as const).map((role) => ({
-						value: role,
-						label: t(`common:role.${role}`),
-					}))}
-				/>
-				<ChoiceField
-					{...field("stateFips")}
-					legend={t("people.state")}
-					help={t("people.stateHelp")}
-					options={states.map((state) => ({ value: state, label: t(`common:state.${state}`) }))}
-				/>
-				<TextField
-					name="operation"
-					label={t("people.operation")}
-					help={t("people.operationHelp")}
-					optional
-					maxLength={254}
-					size="full"
-					defaultValue={typeof values.operation === "string" ? values.operation : ""}
-					problem={actionData?.problems.find((problem) => problem.field === "operation")}
-				/>
-				<div>
-					<Button name="step" value="grant">
-						{t("people.grant")}
-					</Button>
-				</div>
-			</Form>
-		</Section>
 	);
 }
