@@ -109,4 +109,13 @@ test("the coordinator grants a grower's operation and reads in the log who did w
 	expect(await coordinator.getByText("Quail Bend").count()).toBe(0);
 	expect(await axeFindings(coordinator)).toEqual([]);
 	expect((await coordinator.goto(`${stack.baseUrl}/desk/growers`))?.status()).toBe(403);
+
+	// At twice the size a window of 1280 dots shows 640 of them: nothing there may be reached by scrolling sideways alone.
+	for (const page of ["", "/invitations", "/settings", "/impact", "/log"]) {
+		await coordinator.setViewportSize({ width: 640, height: 450 });
+		await coordinator.goto(`${stack.baseUrl}/network${page}`);
+		const beyond = await coordinator.evaluate(() => document.documentElement.scrollWidth - window.innerWidth);
+		expect(beyond, page).toBeLessThanOrEqual(0);
+		if (page !== "" && page !== "/log") expect(await axeFindings(coordinator)).toEqual([]);
+	}
 });

@@ -37,8 +37,8 @@ export function LogFilters({ query, people, surveys }: LogFiltersProps) {
 			<ChoiceField kind="select" name="show" legend={t("log.show")} defaultValue={query.show} options={useKinds()} />
 			<ChoiceField kind="select" name="who" legend={t("log.who")} defaultValue={query.who} options={everybody} />
 			<ChoiceField kind="select" name="survey" legend={t("log.ofSurvey")} defaultValue={query.survey} options={every} />
-			<TextField type="date" name="from" label={t("log.from")} defaultValue={query.from} size="short" />
-			<TextField type="date" name="to" label={t("log.until")} defaultValue={query.to} size="short" />
+			<TextField type="date" name="from" label={t("log.from")} defaultValue={query.from} />
+			<TextField type="date" name="to" label={t("log.until")} defaultValue={query.to} />
 		</SearchBar>
 	);
 }
