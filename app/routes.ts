@@ -13,6 +13,7 @@ export default [
 		route("subscribe", "routes/subscriber/subscribe.tsx"),
 		route("subscribe/:token", "routes/subscriber/confirm.tsx"),
 		route("unsubscribe/:token", "routes/subscriber/unsubscribe.tsx"),
+		route("unfollow/:token", "routes/subscriber/unfollow.tsx"),
 		route("methods", "routes/public/methods.tsx"),
 		route("about", "routes/public/about.tsx"),
 		route("privacy", "routes/public/privacy.tsx"),
@@ -20,6 +21,7 @@ export default [
 		route("calendar", "routes/public/calendar.tsx"),
 		route("data", "routes/public/data.tsx"),
 		route("data/:release", "routes/public/data-release.tsx"),
+		route("data/:release/changes", "routes/public/data-changes.tsx"),
 		route("api", "routes/public/api.tsx"),
 
 		route("invitation/:token", "routes/public/invitation.tsx"),
@@ -43,6 +45,7 @@ export default [
 	route("map/:file", "routes/public/map-file.ts"),
 	route("data/:release/:citation", "routes/public/cite.ts"),
 	route("map/figures/:release/:measure/:crop", "routes/public/map-figures.ts"),
+	route("dataroom/follow", "routes/dataroom/follow.ts"),
 	route("dataroom/releases/:release/:file", "routes/dataroom/file.ts"),
 	route("dataroom/tables/:file", "routes/dataroom/table-file.ts"),
 

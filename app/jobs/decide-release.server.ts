@@ -8,6 +8,7 @@ import type { Decision } from "#app/release/decision.schema.ts";
 import { type Draft, rejectDraft } from "#app/release/drafts.server.ts";
 import { publishApproved, publishJobKey } from "./publish-release.server.ts";
 import { dropJob, queueJob } from "./queue.server.ts";
+import { queueFollowers } from "./tell-followers.server.ts";
 
 /** Further ahead than two years is a slip of the hand. */
 const FARTHEST_DAYS = 731;
@@ -100,6 +101,7 @@ async function withdraw(
 	const { number } = withdrawn;
 	const subject = { subjectKind: "release", subjectId: releaseId, detail: { number } };
 	await logEvent(trx, { personId: viewer.personId, action: "release.withdrawn", ...subject });
+	await queueFollowers(trx, releaseId, "withdrawn");
 	return { done: "withdrawn", number };
 }
 

@@ -21,6 +21,7 @@ import { cropsOf } from "#app/publish/report.ts";
 import { findPublishedById, listReportFiles } from "#app/publish/reports.server.ts";
 import { resolveReport, type ResolvedReport } from "#app/publish/resolved-report.server.ts";
 import { queueJob } from "./queue.server.ts";
+import { sendOnce } from "./send-once.server.ts";
 
 const none = { kind: "none" } as const;
 
@@ -39,10 +40,7 @@ export async function mailReport({ reportId }: { reportId: string }): Promise<vo
 	});
 }
 
-/**
- * Sends one report to one subscriber at most once: that the mail server is about to get it is committed first, and what may
- * have arrived is not sent again.
- */
+/** Sends one report to one subscriber, at most once. */
 export async function mailSubscriber(
 	{ reportId, subscriberId }: { reportId: string; subscriberId: string },
 	lastTry = false,
@@ -51,17 +49,7 @@ export async function mailSubscriber(
 	if (!mailing) return;
 	const mark = (state: Parameters<typeof markMailing>[3]) =>
 		scopedTransaction(none, (trx) => markMailing(trx, reportId, subscriberId, state));
-	if (mailing.triedAt) return mark({ failed: "uncertain" });
-	const mail = await composeReport(reportId, mailing);
-	if (!mail) return;
-	await mark({ tried: true });
-	try {
-		const outcome = await deliver(mail);
-		await mark(outcome === "sent" ? { sent: true } : { failed: outcome });
-	} catch (error) {
-		await mark(lastTry ? { failed: "server_away" } : { tried: false });
-		throw error;
-	}
+	await sendOnce(mailing, () => composeReport(reportId, mailing), mark, lastTry);
 }
 
 /** The report as a mail in the subscriber's language; nothing where its figures have been withdrawn meanwhile. */

@@ -5,6 +5,7 @@ import { log } from "#app/lib/log.server.ts";
 import { type NotPublished, type Published, publishRelease } from "#app/release/publish.server.ts";
 import { filesJobKey } from "./make-release-files.server.ts";
 import { queueJob } from "./queue.server.ts";
+import { queueFollowers } from "./tell-followers.server.ts";
 
 /** One job a draft: a new minute takes the place of the one before. */
 export const publishJobKey = (releaseDraftId: string) => `publish_release:${releaseDraftId}`;
@@ -24,6 +25,7 @@ export async function publishApproved(
 	const subject = { subjectKind: "release", subjectId: releaseId, detail: { number } };
 	await logEvent(trx, { personId, action: "release.published", ...subject });
 	await queueJob(trx, "make_release_files", { releaseId }, { jobKey: filesJobKey(releaseId) });
+	await queueFollowers(trx, releaseId, "revised");
 	await queueJob(trx, "thank_growers", { releaseDraftId }, { jobKey: `thank_growers:${releaseDraftId}` });
 	return outcome;
 }

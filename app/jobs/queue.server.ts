@@ -1,4 +1,5 @@
 import { sql } from "kysely";
+import type { ReleaseChange } from "#app/auth/change-mailings.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Language } from "#app/i18n/language.ts";
 import type { LetterKind } from "#app/mail/templates.ts";
@@ -19,6 +20,9 @@ export type JobPayloads = {
 	/** A published report to everybody who asked for such a one, and to one of them. */
 	mail_report: { reportId: string };
 	mail_subscriber: { reportId: string; subscriberId: string };
+	/** What became of a release, to all who follow it, and to one of them. */
+	tell_followers: { releaseId: string; change: ReleaseChange };
+	tell_follower: { releaseId: string; change: ReleaseChange; followId: string };
 	confirm_subscription: { requestId: string };
 	sweep_subscriptions: Record<string, unknown>;
 	/** An invitation to a role, and the notice that one ends soon; once a day, what grants have ended. */

@@ -1,5 +1,6 @@
 import type { Task } from "graphile-worker";
 import { z } from "zod";
+import { releaseChanges } from "#app/auth/change-mailings.server.ts";
 import { languages } from "#app/i18n/language.ts";
 import { letterKinds } from "#app/mail/templates.ts";
 import { checkAnswers, checkSurveys } from "./check-answers.server.ts";
@@ -17,12 +18,15 @@ import type { JobPayloads } from "./queue.server.ts";
 import { sendSample } from "./sample-mail.server.ts";
 import { sendMail } from "./send-mail.server.ts";
 import { sendReminders } from "./send-reminders.server.ts";
+import { tellFollower, tellFollowers } from "./tell-followers.server.ts";
 import { thankGrowers } from "./thank-growers.server.ts";
 
 /** Reads a payload against its schema: a job queued by an older version fails with a plain message, not half-way. */
 function task<P>(schema: z.ZodType<P>, work: (payload: P, lastTry: boolean) => Promise<void>): Task {
 	return (payload, { job }) => work(schema.parse(payload), job.attempts >= job.max_attempts);
 }
+
+const Change = z.object({ releaseId: z.uuid(), change: z.enum(releaseChanges) });
 
 /** What a worker does when it starts. */
 export { queueMissingFiles } from "./make-release-files.server.ts";
@@ -44,6 +48,8 @@ export const tasks: Record<keyof JobPayloads, Task> = {
 	print_report: task(z.object({ reportId: z.uuid(), language: z.enum(languages) }), printReport),
 	mail_report: task(z.object({ reportId: z.uuid() }), mailReport),
 	mail_subscriber: task(z.object({ reportId: z.uuid(), subscriberId: z.uuid() }), mailSubscriber),
+	tell_followers: task(Change, tellFollowers),
+	tell_follower: task(Change.extend({ followId: z.uuid() }), tellFollower),
 	confirm_subscription: task(z.object({ requestId: z.uuid() }), confirmSubscription),
 	sweep_subscriptions: task(z.looseObject({}), sweepSubscriptions),
 	mail_invitation: task(z.object({ invitationId: z.uuid() }), mailInvitation),

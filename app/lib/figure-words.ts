@@ -44,3 +44,17 @@ export function textWords(
 ): string {
 	return parts.map((part) => (part.kind === "text" ? part.text : figureWords(part.figure, t, format))).join("");
 }
+
+/** What a release tells of one figure: its number, or the word in its place. */
+export function lookWords(
+	{ look, value }: { look: "number" | "rough" | "withheld" | "no_growers" | "no_figure"; value: number | null },
+	measure: FigureShape | undefined,
+	t: TFunction,
+	format: Formatter,
+): string {
+	if (look === "rough") return t("public:data.code.status.rough.word");
+	if (look === "withheld") return t("common:figure.withheld");
+	if (look === "no_growers") return t("common:figure.no_growers");
+	if (look === "no_figure" || value === null || !measure) return t("common:figure.not_asked");
+	return format.figure(value, measure);
+}

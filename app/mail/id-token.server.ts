@@ -4,7 +4,7 @@ import { env } from "#app/lib/env.server.ts";
 const idBytes = 16;
 const macBytes = 32;
 /** What a token lets one do. Each has a key of its own, so that no token passes for one of another kind. */
-export type TokenPurpose = "stop mail" | "confirm subscription" | "unsubscribe";
+export type TokenPurpose = "stop mail" | "confirm subscription" | "unsubscribe" | "unfollow";
 
 /**
  * A token that stands for one row: its id and a MAC of 256 bits over it. Nothing is stored, so that every mail that was ever

@@ -11,6 +11,10 @@ const Rules = z
 		careCv: z.number(),
 		steadyDays: z.number(),
 		careDays: z.number(),
+		/** So many of the largest owners may not have more than this share; null where the rule is not used. */
+		largest: z.object({ owners: z.number(), percent: z.number() }).nullable(),
+		/** How closely anybody is taken to know an amount from what can be seen, as a factor. */
+		publicFactor: z.number().nullable(),
 	})
 	.partial();
 const Counted = z.object({ asked: z.number(), answered: z.number() });

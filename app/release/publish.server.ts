@@ -3,6 +3,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import { isAsAudited, publishedChecksum } from "./checksums.server.ts";
 import { type DraftCell, ReleaseAudit, ReleaseMethod, ReleaseRules } from "./draft.ts";
 import { listDraftCells } from "./drafts.server.ts";
+import { keepForm } from "./kept-form.server.ts";
 import { publishedAudit, publishedMethod, publishedRows } from "./published-rows.ts";
 
 export type Published = { outcome: "published"; releaseId: string; number: number };
@@ -36,6 +37,7 @@ export async function publishRelease(
 		publishedAt: draft.publish_at,
 	});
 	await insertCells(trx, releaseId, method, cells);
+	await keepForm(trx, releaseId, draft.survey_id);
 	await trx
 		.updateTable("collect.release_draft")
 		.set({ status: "approved", release_id: releaseId })

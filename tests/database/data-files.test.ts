@@ -194,6 +194,24 @@ describe("outside readers find the same cells in every format:", () => {
 		expect(JSON.stringify(book.getWorksheet("codebook")!.getSheetValues())).toContain("Withheld");
 	});
 
+	test("the codebook with the questions in both languages, and no text that a spreadsheet would run", () => {
+		const asked = JSON.parse(text("codebook.json")).form;
+		expect(asked).toMatchObject({ version: 2, screens: [{ questions: [{ key: "harvested" }, { key: "cause" }] }] });
+		const questions = (parse(text("codebook.csv"), { columns: true }) as Record<string, string>[]).filter(({ part }) =>
+			["question", "option"].includes(part!),
+		);
+		expect(questions.map(({ language, code, name }) => [language, code, name])).toEqual([
+			["en", "harvested", "'=How much?"],
+			["en", "cause", "What was lost to?"],
+			["en", "cause.freeze", "Freeze or frost"],
+			["en", "cause.hail", "Hail"],
+			["es", "harvested", "¿Cuánto?"],
+			["es", "cause", "¿Por qué se perdió?"],
+			["es", "cause.freeze", "Helada"],
+			["es", "cause.hail", "Granizo"],
+		]);
+	});
+
 	test("a reader of SDMX-CSV in its file, with NaN for what has no value and C for all that is withheld", async () => {
 		const lines = parse(text("cells.sdmx.csv"), { columns: true }) as Record<string, string>[];
 		const read = lines.map((line) => ({

@@ -3,11 +3,13 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, beforeEach, expect, test } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
+import type { FormDefinition } from "#app/collect/form.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
 import { computeReleaseDraft } from "#app/jobs/compute-release-draft.server.ts";
 import { type Decided, decideRelease } from "#app/jobs/decide-release.server.ts";
 import { networkRules } from "#app/jobs/network-rules.ts";
 import { publishAtItsMinute } from "#app/jobs/publish-release.server.ts";
+import { findAskedForm } from "#app/publish/asked-form.server.ts";
 import { listDataRows } from "#app/publish/data-file.server.ts";
 import { findReleaseById, listEditions, listReleases } from "#app/publish/releases.server.ts";
 import type { Decision } from "#app/release/decision.schema.ts";
@@ -65,12 +67,13 @@ async function statusOf(draftId: string): Promise<string> {
 }
 
 /** As the application, which alone reads the queue. */
-const jobsOf = (draftId: string) =>
+const jobsNamed = (key: string) =>
 	scopedTransaction({ kind: "none" }, async (trx) => {
 		const { rows } = await sql<{ run_at: Date }>`select run_at from graphile_worker._private_jobs
-			where key = ${`publish_release:${draftId}`}`.execute(trx);
+			where key = ${key}`.execute(trx);
 		return rows;
 	});
+const jobsOf = (draftId: string) => jobsNamed(`publish_release:${draftId}`);
 
 test("a draft approved for a minute to come is published by its job, then and not before", async () => {
 	const draftId = await draft();
@@ -149,7 +152,9 @@ test("a revision needs a release and a reason, replaces it in the open, and the 
 	expect(await make(null)).toEqual({ outcome: "already_released" });
 
 	const second = await draft(reason);
+	expect(await jobsNamed(`tell_followers:${second}:revised`)).toEqual([]);
 	expect(await decide(second, { decision: "publish" })).toMatchObject({ done: "published" });
+	expect(await jobsNamed(`tell_followers:${second}:revised`)).toHaveLength(1);
 	const [newest, oldest] = await listEditions(surveyId);
 	expect(newest).toMatchObject({ releaseId: second, edition: 2, revisionReason: reason, replacedBy: null });
 	expect(oldest).toMatchObject({ releaseId: first, edition: 1, revisionReason: null, replacedBy: newest!.number });
@@ -174,6 +179,30 @@ test("a revision tells of the areas of the release before it, though the distric
 	expect(await decide(second, { decision: "publish" })).toMatchObject({ done: "published" });
 });
 
+test("a release keeps the questions as they stood when it came out, in both languages and without what is counted of them", async () => {
+	const first = await draft();
+	await decide(first, { decision: "publish" });
+	const kept = await findAskedForm(first);
+	await owner.query(
+		`update collect.form_version set definition = jsonb_set(definition, '{title,en}', '"Worded anew"')
+		where form_version_id = (select form_version_id from collect.survey where survey_id = $1)`,
+		[surveyId],
+	);
+	expect(await findAskedForm(first)).toEqual(kept);
+	const asked = kept?.form.screens.flatMap(({ questions }) => questions) ?? [];
+	const { rows } = await owner.query<{ definition: FormDefinition }>(
+		"select v.definition from collect.survey join collect.form_version v using (form_version_id) where survey_id = $1",
+		[surveyId],
+	);
+	const form = rows[0]!.definition;
+	expect(form.title.en).toBe("Worded anew");
+	const questions = form.screens.flatMap((screen) => screen.questions);
+	expect(asked.map(({ key, text, help }) => ({ key, text, help }))).toEqual(
+		questions.map(({ key, text, help }) => ({ key, text, help })),
+	);
+	expect(Object.keys(kept?.form ?? {})).not.toContain("measures");
+});
+
 test("a withdrawn release serves no figure and keeps its address; a revision can follow", async () => {
 	const first = await draft();
 	await decide(first, { decision: "publish" });
@@ -186,6 +215,7 @@ test("a withdrawn release serves no figure and keeps its address; a revision can
 	} as const;
 	expect(await decide(first, withdraw)).toMatchObject({ done: "withdrawn" });
 	expect(await decide(first, withdraw)).toEqual({ refused: "already_withdrawn" });
+	expect(await jobsNamed(`tell_followers:${first}:withdrawn`)).toHaveLength(1);
 
 	expect(await shown()).toBe(0);
 	expect(await findReleaseById(first)).toMatchObject({

@@ -30,7 +30,44 @@ async function addOddCells(owner: Client, releaseId: string): Promise<void> {
 		[releaseId],
 	);
 	await owner.query("alter table release.cell enable trigger cell_as_audited");
+	await owner.query("insert into release.form (release_id, version, definition) values ($1, 2, $2)", [
+		releaseId,
+		JSON.stringify(askedForm),
+	]);
 }
+
+/** What growers were asked, in few words, with a text that a spreadsheet would run. */
+const askedForm = {
+	key: "after_harvest",
+	title: { en: "After harvest", es: "Después de la cosecha" },
+	minutes: 5,
+	screens: [
+		{
+			key: "crop",
+			title: { en: "Your crop", es: "Su cosecha" },
+			perPlanting: true,
+			questions: [
+				{
+					key: "harvested",
+					type: "number",
+					unitFamily: "mass",
+					required: true,
+					text: { en: "=How much?", es: "¿Cuánto?" },
+				},
+				{
+					key: "cause",
+					type: "choice",
+					required: false,
+					text: { en: "What was lost to?", es: "¿Por qué se perdió?" },
+					options: [
+						{ key: "freeze", text: { en: "Freeze or frost", es: "Helada" } },
+						{ key: "hail", text: { en: "Hail", es: "Granizo" } },
+					],
+				},
+			],
+		},
+	],
+};
 
 /** An invented release of three measures and two crops, without files. */
 export async function addOddRelease(owner: Client, season = 2031): Promise<{ releaseId: string; number: number }> {

@@ -1,7 +1,8 @@
 import type { Language } from "#app/i18n/language.ts";
+import type { AskedQuestion } from "#app/lib/asked-form.ts";
 import { dataColumns, observationStatuses, toCsv } from "../data-file.ts";
 import type { Release } from "../release.ts";
-import { definitionsOf, distinctOf, type FileSource, inBoth } from "./release-file.ts";
+import { definitionsOf, distinctOf, type FilePart, type FileSource, inBoth } from "./release-file.ts";
 
 const steadiness = ["steady", "care", "rough"] as const;
 const header = ["part", "code", "name", "description", "unit"];
@@ -42,6 +43,17 @@ export function codebookRows(source: FileSource, language: Language): (string | 
 			t(`dataroom:steadiness.${code}`),
 			null,
 		]),
+		...distinctOf(source, questionsOf).flatMap(({ item }) => questionRows(item, language)),
+	];
+}
+
+const questionsOf = ({ asked }: FilePart) => (asked?.form.screens ?? []).flatMap(({ questions }) => questions);
+
+/** A question, then what could be chosen. */
+function questionRows({ key, text, help, options = [] }: AskedQuestion, language: Language): (string | null)[][] {
+	return [
+		["question", key, text[language], help?.[language] ?? null, null],
+		...options.map((option) => ["option", `${key}.${option.key}`, option.text[language], null, null]),
 	];
 }
 
@@ -64,10 +76,11 @@ export function codebookJson(source: FileSource): unknown {
 	});
 	/** Of a table each definition says which of its releases tell it so. */
 	const inReleases = (releases: number[]) => (isTable ? { releases } : {});
-	const releases = parts.map(({ release }) => ({
+	const releases = parts.map(({ release, asked }) => ({
 		release: releaseOf(release, address, isTable),
 		method: release.method,
 		rules: release.rules,
+		form: asked && { version: asked.version, ...asked.form },
 	}));
 	return {
 		...(isTable ? { table: { address }, releases } : releases[0]),

@@ -1,5 +1,6 @@
 import type { Language } from "#app/i18n/language.ts";
 import type { TFunction } from "i18next";
+import { findAskedForm } from "../asked-form.server.ts";
 import { listDataRows } from "../data-file.server.ts";
 import { toRecord } from "../data-file.ts";
 import { findReleaseById, listAreas, listCrops, listMeasures } from "../releases.server.ts";
@@ -13,16 +14,17 @@ export async function findFileSource(
 ): Promise<FileSource | undefined> {
 	const release = await findReleaseById(releaseId);
 	if (!release || release.withdrawn) return undefined;
-	const [measures, areas, crops, rows] = await Promise.all([
+	const [measures, areas, crops, rows, asked] = await Promise.all([
 		listMeasures(releaseId),
 		listAreas(releaseId),
 		listCrops(releaseId),
 		listDataRows(releaseId),
+		findAskedForm(releaseId),
 	]);
 	const told = areas.toSorted((a, b) => (a.key < b.key ? -1 : 1));
 	const values = { number: release.number, season: release.season };
 	return {
-		parts: [{ release, measures, areas: told, outlined: told }],
+		parts: [{ release, measures, areas: told, outlined: told, asked }],
 		isTable: false,
 		name: `tallygrove-release-${release.number}`,
 		structureId: `RELEASE_${release.number}`,

@@ -2,6 +2,7 @@ import type { TFunction } from "i18next";
 import type { Language } from "#app/i18n/language.ts";
 import { groupBy } from "#app/lib/group-by.ts";
 import type { Words } from "#app/lib/words.ts";
+import type { KeptForm } from "../asked-form.server.ts";
 import type { DataRecord } from "../data-file.ts";
 import type { Release, ReleaseArea, ReleaseMeasure } from "../release.ts";
 
@@ -15,6 +16,8 @@ export type FilePart = {
 	areas: readonly ReleaseArea[];
 	/** All of its areas: what is wider than a county is outlined by its counties. */
 	outlined: readonly ReleaseArea[];
+	/** The questions as they were asked; null where they were not kept. */
+	asked: KeptForm | null;
 };
 
 /** Everything that files are made from: what the reader's role can see, and words for it. */

@@ -1,6 +1,7 @@
 import { createHash } from "node:crypto";
 import type { Language } from "#app/i18n/language.ts";
 import type { TFunction } from "i18next";
+import { findAskedForm } from "../asked-form.server.ts";
 import type { DataRecord } from "../data-file.ts";
 import { csvType, type FilePart, type FileSource, inBoth, textFile } from "../files/release-file.ts";
 import { findRelease, listAreas, listMeasures } from "../releases.server.ts";
@@ -53,7 +54,11 @@ export async function tableSource(
 async function partOfRelease(number: number, records: readonly DataRecord[]): Promise<FilePart | undefined> {
 	const release = await findRelease(number);
 	if (!release || release.withdrawn) return undefined;
-	const [measures, areas] = await Promise.all([listMeasures(release.releaseId), listAreas(release.releaseId)]);
+	const [measures, areas, asked] = await Promise.all([
+		listMeasures(release.releaseId),
+		listAreas(release.releaseId),
+		findAskedForm(release.releaseId),
+	]);
 	const own = records.filter((record) => record.release === number);
 	const told = new Set(own.map(({ measure }) => measure));
 	const lying = new Set(own.map(({ area_code: code }) => code));
@@ -62,5 +67,6 @@ async function partOfRelease(number: number, records: readonly DataRecord[]): Pr
 		measures: measures.filter(({ key }) => told.has(key)),
 		areas: areas.filter(({ key }) => lying.has(key)).toSorted((a, b) => (a.key < b.key ? -1 : 1)),
 		outlined: areas,
+		asked,
 	};
 }

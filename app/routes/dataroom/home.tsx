@@ -2,6 +2,7 @@ import { useTranslation } from "react-i18next";
 import { href, Link } from "react-router";
 import type { Route } from "./+types/home";
 import { requirePerson } from "#app/auth/guard.server.ts";
+import { listFollowed } from "#app/auth/release-follows.server.ts";
 import { findOwnRequest } from "#app/auth/research-access.server.ts";
 import { visitorContext } from "#app/auth/visitor.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
@@ -10,22 +11,28 @@ import { EmptyState } from "#app/components/empty-state.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
+import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { listReleases } from "#app/publish/releases.server.ts";
+import { isStanding } from "#app/publish/release.ts";
+import { listEveryRelease } from "#app/publish/releases.server.ts";
+import { FollowedReleases } from "./parts/followed-releases.tsx";
 
 export async function loader({ context }: Route.LoaderArgs) {
 	const { viewer } = requirePerson(context);
 	const approved = context.get(visitorContext).grants.researcher;
-	const releases = await listReleases();
+	const [every, followed] = await Promise.all([listEveryRelease(), listFollowed(viewer)]);
+	const releases = every.filter(isStanding);
 	return {
 		approved,
 		request: approved ? null : await findOwnRequest(viewer),
+		// The newest edition of each, whatever became of it.
+		follows: followed.flatMap((seriesId) => every.find((release) => release.seriesId === seriesId) ?? []),
 		releases: releases.map(({ number, season, title, publishedAt }) => ({ number, season, title, publishedAt })),
 	};
 }
 
 export default function DataRoom({ loaderData }: Route.ComponentProps) {
-	const { approved, request, releases } = loaderData;
+	const { approved, request, releases, follows } = loaderData;
 	const { t, i18n } = useTranslation("dataroom");
 	const format = useFormat();
 	return (
@@ -58,6 +65,11 @@ export default function DataRoom({ loaderData }: Route.ComponentProps) {
 				]}
 				empty={<EmptyState title={t("home.emptyTitle")}>{t("home.emptyBody")}</EmptyState>}
 			/>
+			{(approved || follows.length > 0) && (
+				<Section title={t("follow.listTitle")}>
+					<FollowedReleases releases={follows} />
+				</Section>
+			)}
 		</Page>
 	);
 }

@@ -12,6 +12,7 @@ import { env } from "#app/lib/env.server.ts";
 import { helpContact } from "#app/lib/help-contact.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { listCellPage } from "#app/publish/api/list-cells.server.ts";
+import { findAskedForm } from "#app/publish/asked-form.server.ts";
 import { dcatDataset, schemaOrgDataset } from "#app/publish/catalogue-record.ts";
 import { findChanges } from "#app/publish/changes.server.ts";
 import { listFiles } from "#app/publish/release-files.server.ts";
@@ -25,9 +26,12 @@ import {
 	listMeasures,
 	listRespondentsBands,
 } from "#app/publish/releases.server.ts";
+import { AskedQuestions } from "./parts/release/asked-questions.tsx";
 import { Codebook } from "./parts/codebook.tsx";
-import { ReleaseNotice } from "./parts/release-state.tsx";
+import { ReleaseNotice } from "#app/components/release/release-state.tsx";
 import { ReleaseCitation } from "./parts/release/release-citation.tsx";
+import { FollowRelease } from "./parts/release/follow-release.tsx";
+import { followingOf } from "./parts/release/following.server.ts";
 import { Editions } from "./parts/release/release-editions.tsx";
 import { ReleaseFacts } from "./parts/release/release-facts.tsx";
 import { ReleaseFiles } from "./parts/release/release-files.tsx";
@@ -43,7 +47,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	const { releaseId } = release;
 	const editions = await listEditions(release.seriesId);
 	const previous = editions.find(({ edition }) => edition === release.edition - 1) ?? null;
-	const [measures, crops, counties, districts, files, states, bands, changes, preview] = await Promise.all([
+	const [measures, crops, counties, districts, files, states, bands, changes, preview, asked] = await Promise.all([
 		listMeasures(releaseId),
 		listCrops(releaseId),
 		countCells(releaseId, "county"),
@@ -53,6 +57,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		listRespondentsBands(),
 		findChanges(releaseId, previous?.releaseId ?? null),
 		listPreview(release),
+		findAskedForm(releaseId),
 	]);
 	const language = getLanguage(context);
 	const t = getT(context, "public");
@@ -81,6 +86,8 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		files,
 		places,
 		preview,
+		asked,
+		following: await followingOf(context, release),
 		band: bands[releaseId] ?? null,
 		address: `${env().BASE_URL}/data/${release.number}`,
 		described: release.withdrawn ? [] : [schemaOrgDataset(told), dcatDataset(told)],
@@ -143,12 +150,18 @@ export default function DataRelease({ loaderData }: Route.ComponentProps) {
 					</Section>
 				</>
 			)}
+			<Section title={t("dataroom:asked.title")} id="asked">
+				<AskedQuestions asked={loaderData.asked} />
+			</Section>
 			<Codebook measures={measures} />
 			{loaderData.editions.length > 1 && (
-				<Section title={t("data.one.editions")}>
+				<Section title={t("data.one.editions")} id="editions">
 					<Editions editions={loaderData.editions} own={release.number} changes={loaderData.changes} />
 				</Section>
 			)}
+			<Section title={t("dataroom:follow.title")} id="follow">
+				<FollowRelease {...loaderData} />
+			</Section>
 			<Section title={t("data.one.cite")}>
 				<ReleaseCitation
 					number={release.number}

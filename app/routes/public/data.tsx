@@ -14,7 +14,7 @@ import { useFormat } from "#app/i18n/use-format.ts";
 import { stateOf } from "#app/publish/api/item-rows.ts";
 import type { Release } from "#app/publish/release.ts";
 import { listEveryRelease, listRespondentsBands, listStatesByRelease } from "#app/publish/releases.server.ts";
-import { ReleaseState } from "./parts/release-state.tsx";
+import { ReleaseState } from "#app/components/release/release-state.tsx";
 import { CatalogueQuery, fitsCatalogue, releaseStates } from "./parts/release/catalogue.ts";
 
 export async function loader({ context, request }: Route.LoaderArgs) {

@@ -25,7 +25,7 @@ import { MapFiles } from "./parts/map-files.tsx";
 import { MapForm } from "./parts/map-form.tsx";
 import { MapPair, type Pair } from "./parts/map-pair.tsx";
 import { MapTable } from "./parts/map-table.tsx";
-import { ReleaseNotice } from "./parts/release-state.tsx";
+import { ReleaseNotice } from "#app/components/release/release-state.tsx";
 import { useChosenArea } from "./parts/use-chosen-area.ts";
 import { useViewTitle } from "./parts/use-view-title.ts";
 

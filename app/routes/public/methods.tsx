@@ -16,7 +16,7 @@ export async function loader() {
 function useSettings({ latest }: Route.ComponentProps["loaderData"]) {
 	const { t } = useTranslation("public");
 	const format = useFormat();
-	const { minimumOwners, dominancePercent, steadyCv, careCv, steadyDays, careDays } = latest?.rules ?? {};
+	const { minimumOwners, dominancePercent, largest, steadyCv, careCv, steadyDays, careDays } = latest?.rules ?? {};
 	const percent = (fraction: number) => format.quantity(fraction * 100, "percent");
 	const { all, weighting } = latest?.method ?? {};
 	return {
@@ -25,6 +25,12 @@ function useSettings({ latest }: Route.ComponentProps["loaderData"]) {
 			: t("methods.private.minimumUnset"),
 		dominance: dominancePercent
 			? t("methods.private.dominance", { percent: format.quantity(dominancePercent, "percent") })
+			: "",
+		largest: largest
+			? t("methods.private.largest", {
+					owners: format.number(largest.owners),
+					percent: format.quantity(largest.percent, "percent"),
+				})
 			: "",
 		cutOffs: steadyCv && careCv ? t("methods.sure.cutOffs", { steady: percent(steadyCv), care: percent(careCv) }) : "",
 		dayCutOffs:
@@ -63,7 +69,7 @@ export default function Methods({ loaderData }: Route.ComponentProps) {
 				<Text lines={[t("methods.sure.days"), t("methods.sure.rounded")]} />
 			</Section>
 			<Section title={t("methods.private.title")} id="privacy">
-				<Text lines={[t("methods.private.pledge"), settings.minimum, settings.dominance]} />
+				<Text lines={[t("methods.private.pledge"), settings.minimum, settings.dominance, settings.largest]} />
 				<Text lines={[t("methods.private.shields"), t("methods.private.oneWord"), t("methods.private.kept")]} />
 				<Text lines={[t("methods.private.contact", helpContact)]} />
 				<p>

@@ -20,7 +20,7 @@ import { findReleaseById } from "#app/publish/releases.server.ts";
 import { findPublishedReport, listReportFiles, listVersions } from "#app/publish/reports.server.ts";
 import { resolveReport } from "#app/publish/resolved-report.server.ts";
 import { linkedData } from "./parts/linked-data.ts";
-import { ReleaseNotice } from "./parts/release-state.tsx";
+import { ReleaseNotice } from "#app/components/release/release-state.tsx";
 
 const Version = z.coerce.number().int().positive().max(10_000).optional().catch(undefined);
 

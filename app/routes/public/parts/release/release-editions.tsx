@@ -3,7 +3,7 @@ import { href, Link } from "react-router";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { EditionChanges } from "#app/publish/changes.server.ts";
 import type { Release } from "#app/publish/release.ts";
-import { ReleaseState } from "../release-state.tsx";
+import { ReleaseState } from "#app/components/release/release-state.tsx";
 
 type EditionsProps = { editions: Release[]; own: number; changes: EditionChanges | null };
 
@@ -38,6 +38,11 @@ export function Editions({ editions, own, changes }: EditionsProps) {
 						hidden: format.number(changes.hidden),
 						same: format.number(changes.same),
 					})}
+				</p>
+			)}
+			{changes && (
+				<p className="no-print mt-2">
+					<Link to={href("/data/:release/changes", { release: `${own}` })}>{t("data.changes.link")}</Link>
 				</p>
 			)}
 		</>

@@ -1,6 +1,7 @@
 import { useTranslation } from "react-i18next";
 import { DescriptionList } from "#app/components/description-list.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { decimalsOf } from "#app/lib/format.ts";
 import type { CellStatus } from "#app/publish/cell.ts";
 import type { Release } from "#app/publish/release.ts";
 
@@ -13,6 +14,12 @@ export function ReleaseFacts({ release, counties, districts, band, places }: Fac
 	const format = useFormat();
 	const { rules, method } = release;
 	const percent = (fraction: number) => format.quantity(fraction * 100, "percent");
+	const rate = ({ asked, answered }: { asked: number; answered: number }) =>
+		t("data.one.rate", {
+			answered: format.number(answered),
+			asked: format.number(asked),
+			rate: percent(asked > 0 ? answered / asked : 0),
+		});
 	const counted = (counts: Counts) =>
 		t("data.one.counted", {
 			shown: format.number(counts.shown),
@@ -30,14 +37,11 @@ export function ReleaseFacts({ release, counties, districts, band, places }: Fac
 		band !== null && { term: t("data.band"), detail: band },
 		method.all && {
 			term: t("data.answered"),
-			detail: t("data.one.answeredOf", {
-				answered: format.number(method.all.answered),
-				asked: format.number(method.all.asked),
-			}),
+			detail: rate(method.all),
 		},
-		...(method.states ?? []).map(({ stateFips, asked, answered }) => ({
-			term: t("data.one.answeredIn", { state: t(`common:state.${stateFips}`) }),
-			detail: t("data.one.answeredOf", { answered: format.number(answered), asked: format.number(asked) }),
+		...(method.states ?? []).map((state) => ({
+			term: t("data.one.answeredIn", { state: t(`common:state.${state.stateFips}`) }),
+			detail: rate(state),
 		})),
 		!release.withdrawn && { term: t("data.one.countyCells"), detail: counted(counties) },
 		!release.withdrawn && { term: t("data.one.districtCells"), detail: counted(districts) },
@@ -49,6 +53,19 @@ export function ReleaseFacts({ release, counties, districts, band, places }: Fac
 		rules.dominancePercent && {
 			term: t("data.one.dominance"),
 			detail: t("data.one.dominanceRule", { percent: format.quantity(rules.dominancePercent, "percent") }),
+		},
+		rules.largest && {
+			term: t("data.one.largest"),
+			detail: t("data.one.largestRule", {
+				owners: format.number(rules.largest.owners),
+				percent: format.quantity(rules.largest.percent, "percent"),
+			}),
+		},
+		rules.publicFactor && {
+			term: t("data.one.publicFactor"),
+			detail: t("data.one.publicFactorRule", {
+				factor: format.number(rules.publicFactor, decimalsOf(rules.publicFactor)),
+			}),
 		},
 		rules.steadyCv &&
 			rules.careCv && {
@@ -65,5 +82,10 @@ export function ReleaseFacts({ release, counties, districts, band, places }: Fac
 			},
 		{ term: t("data.one.codeVersion"), detail: release.codeVersion },
 	];
-	return <DescriptionList items={items.filter((item) => typeof item === "object")} />;
+	return (
+		<>
+			<DescriptionList items={items.filter((item) => item !== null && typeof item === "object")} />
+			{method.all && <p className="mt-3 max-w-prose text-sm text-quiet">{t("data.one.rateNote")}</p>}
+		</>
+	);
 }
