@@ -2,7 +2,7 @@ import { z } from "zod";
 import type { FigureShape } from "#app/lib/format.ts";
 import { Words } from "#app/lib/words.ts";
 
-/** The settings that a release was made with, as frozen in it. A setting that an older release did not record is absent. */
+/** The settings that a release was made with, as frozen in it. A setting that is not used, or that an older release did not record, is absent. */
 const Rules = z
 	.object({
 		minimumOwners: z.number(),
@@ -11,12 +11,17 @@ const Rules = z
 		careCv: z.number(),
 		steadyDays: z.number(),
 		careDays: z.number(),
-		/** So many of the largest owners may not have more than this share; null where the rule is not used. */
 		largest: z.object({ owners: z.number(), percent: z.number() }).nullable(),
-		/** How closely anybody is taken to know an amount from what can be seen, as a factor. */
 		publicFactor: z.number().nullable(),
 	})
-	.partial();
+	.partial()
+	.transform(({ largest, publicFactor, ...rules }) => ({
+		...rules,
+		/** So many of the largest owners may not have more than this share together. */
+		...(largest && { largestOwners: largest.owners, largestPercent: largest.percent }),
+		/** How closely anybody is taken to know an amount from what can be seen, as a factor. */
+		...(typeof publicFactor === "number" && { publicFactor }),
+	}));
 const Counted = z.object({ asked: z.number(), answered: z.number() });
 const Method = z
 	.object({

@@ -12,6 +12,7 @@ import { loader as releaseLoader } from "#app/routes/public/data-release.tsx";
 import { loader as catalogueLoader } from "#app/routes/public/data.tsx";
 import { loader as reportLoader } from "#app/routes/public/report.tsx";
 import { createTestDatabase, type TestDatabase } from "#tests/helpers/database.ts";
+import { dcatRules, faultsOf, schemaOrgRules, unknownPrefixes } from "./linked-data-rules.ts";
 import { addRelease } from "./publish-fixture.ts";
 import { addReleaseWithFiles } from "./released-files-fixture.ts";
 import { addPerson, connectOwner, useDatabase } from "./surveys-fixture.ts";
@@ -33,13 +34,23 @@ afterAll(async () => {
 	await database.drop();
 });
 
-type Asked = { params?: Record<string, string>; search?: string; form?: Record<string, string>; researcher?: boolean };
+type Asked = {
+	params?: Record<string, string>;
+	search?: string;
+	form?: Record<string, string>;
+	researcher?: boolean;
+	language?: string;
+};
 
 /** Runs a loader or an action as the server does: with the words of a language, and with whoever asks. */
 async function run<T>(work: (args: never) => Promise<T>, asked: Asked = {}): Promise<T> {
-	const { params = {}, search = "", form, researcher } = asked;
+	const { params = {}, search = "", form, researcher, language = "en" } = asked;
 	const body = form && new URLSearchParams(form);
-	const request = new Request(`https://survey.example/page${search}`, { method: form ? "POST" : "GET", body });
+	const request = new Request(`https://survey.example/page${search}`, {
+		method: form ? "POST" : "GET",
+		body,
+		headers: { "accept-language": language },
+	});
 	const context = new RouterContextProvider();
 	if (researcher !== undefined) {
 		const person = { personId, displayName: "Jonas Weir", email: null, language: null };
@@ -77,16 +88,26 @@ test("a release's page tells its files with size and checksum, to people and to 
 	expect(files).toEqual(sums.map((sum) => expect.objectContaining(sum)));
 	expect(preview.length).toBeGreaterThan(0);
 
-	// schema.org/Dataset as search engines ask for it: name, a description of 50 to 5,000 characters, distributions.
-	const [dataset, dcat] = described as [Record<string, unknown>, Record<string, unknown>];
-	expect(dataset).toMatchObject({ "@type": "Dataset", isAccessibleForFree: true, temporalCoverage: "2031" });
-	expect(String(dataset.description).length).toBeGreaterThan(50);
+	const [dataset] = described as [Record<string, unknown>, Record<string, unknown>];
+	expect(dataset).toMatchObject({ temporalCoverage: "2031" });
 	const distribution = dataset.distribution as { contentUrl: string; sha256: string }[];
 	expect(distribution.map(({ sha256 }) => sha256)).toEqual(sums.map(({ sha256 }) => sha256));
 	expect(distribution[1]!.contentUrl).toBe(`https://survey.example/api/v1/releases/${made.number}/files/cells.csv`);
-	// DCAT-US 3: a data set needs title, description and publisher.
-	for (const needed of ["dcterms:title", "dcterms:description", "dcterms:publisher"])
-		expect(dcat[needed]).toBeDefined();
+});
+
+test("what a release's page tells machines keeps the rules of schema.org and of DCAT-US 3, in both languages", async () => {
+	for (const language of ["en", "es"]) {
+		const { described } = await run(releaseLoader, { params: ofRelease(), language });
+		const [dataset, dcat] = described as [Record<string, unknown>, Record<string, unknown>];
+		expect(faultsOf(dataset, schemaOrgRules)).toEqual([]);
+		expect(faultsOf(dcat, dcatRules)).toEqual([]);
+		expect(unknownPrefixes(dcat)).toEqual([]);
+		expect(dataset.inLanguage).toBe(language);
+		// A checker that finds nothing wrong with anything would pass too.
+		for (const [record, rules] of [[dataset, schemaOrgRules] as const, [dcat, dcatRules] as const])
+			for (const name of Object.keys(rules).filter((one) => rules[one]!.must))
+				expect(faultsOf({ ...record, [name]: 7 }, rules)).toEqual([`${name} is 7`]);
+	}
 });
 
 test("a revision's page counts what changed, and a withdrawn one's tells machines nothing", async () => {

@@ -32,7 +32,7 @@ const programs: Record<ProgramName, string[]> = {
  * database of its own. The production build must be there; `npm test` makes it first.
  */
 export async function startStack(
-	options: { seed?: "none" | "demo"; coordinatorSubject?: string } = {},
+	options: { seed?: "none" | "demo"; coordinatorSubject?: string; build?: string } = {},
 ): Promise<Stack> {
 	const database = await createTestDatabase({ seed: options.seed ?? "none" });
 	const photoFolder = await mkdtemp(path.join(tmpdir(), "tallygrove-photos-"));
@@ -69,7 +69,8 @@ export async function startStack(
 	};
 
 	async function start(name: ProgramName): Promise<void> {
-		const child = spawn(process.execPath, programs[name], { env, stdio: ["ignore", "pipe", "pipe"] });
+		const script = name === "server" ? [programs.server[0]!, options.build ?? programs.server[1]!] : programs[name];
+		const child = spawn(process.execPath, script, { env, stdio: ["ignore", "pipe", "pipe"] });
 		children.set(name, child);
 		for (const stream of [child.stdout, child.stderr]) {
 			stream?.on("data", (chunk: Buffer) =>

@@ -16,7 +16,8 @@ export async function loader() {
 function useSettings({ latest }: Route.ComponentProps["loaderData"]) {
 	const { t } = useTranslation("public");
 	const format = useFormat();
-	const { minimumOwners, dominancePercent, largest, steadyCv, careCv, steadyDays, careDays } = latest?.rules ?? {};
+	const { minimumOwners, dominancePercent, largestOwners, largestPercent, steadyCv, careCv, steadyDays, careDays } =
+		latest?.rules ?? {};
 	const percent = (fraction: number) => format.quantity(fraction * 100, "percent");
 	const { all, weighting } = latest?.method ?? {};
 	return {
@@ -26,12 +27,13 @@ function useSettings({ latest }: Route.ComponentProps["loaderData"]) {
 		dominance: dominancePercent
 			? t("methods.private.dominance", { percent: format.quantity(dominancePercent, "percent") })
 			: "",
-		largest: largest
-			? t("methods.private.largest", {
-					owners: format.number(largest.owners),
-					percent: format.quantity(largest.percent, "percent"),
-				})
-			: "",
+		largest:
+			largestOwners && largestPercent
+				? t("methods.private.largest", {
+						owners: format.number(largestOwners),
+						percent: format.quantity(largestPercent, "percent"),
+					})
+				: "",
 		cutOffs: steadyCv && careCv ? t("methods.sure.cutOffs", { steady: percent(steadyCv), care: percent(careCv) }) : "",
 		dayCutOffs:
 			steadyDays && careDays

@@ -12,6 +12,7 @@ import { ApiProblem, problemBody, problemStatus } from "#app/publish/api/problem
 import { readRequest } from "#app/publish/api/read-request.ts";
 import { matches } from "#app/publish/cached-json.server.ts";
 import { csvType } from "#app/publish/files/release-file.ts";
+import { keptBody } from "./kept-bodies.server.ts";
 
 type Args = {
 	request: Request;
@@ -110,10 +111,10 @@ async function tagged(
 	const told: Record<string, string> = { ...headers, etag, "cache-control": caching };
 	if (matches(request.headers.get("if-none-match"), etag)) return new Response(null, { status: 304, headers: told });
 
-	const { text, next } = await body();
+	const { bytes, next } = await keptBody(etag, body);
 	if (next) told.link = `<${next}>; rel="next"`;
 	told["content-type"] = type === "text/csv" ? csvType : `${type}; charset=utf-8`;
-	return new Response(request.method === "HEAD" ? null : text, { headers: told });
+	return new Response(request.method === "HEAD" ? null : bytes, { headers: told });
 }
 
 const started = Date.now();

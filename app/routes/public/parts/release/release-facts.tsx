@@ -54,13 +54,14 @@ export function ReleaseFacts({ release, counties, districts, band, places }: Fac
 			term: t("data.one.dominance"),
 			detail: t("data.one.dominanceRule", { percent: format.quantity(rules.dominancePercent, "percent") }),
 		},
-		rules.largest && {
-			term: t("data.one.largest"),
-			detail: t("data.one.largestRule", {
-				owners: format.number(rules.largest.owners),
-				percent: format.quantity(rules.largest.percent, "percent"),
-			}),
-		},
+		rules.largestOwners &&
+			rules.largestPercent && {
+				term: t("data.one.largest"),
+				detail: t("data.one.largestRule", {
+					owners: format.number(rules.largestOwners),
+					percent: format.quantity(rules.largestPercent, "percent"),
+				}),
+			},
 		rules.publicFactor && {
 			term: t("data.one.publicFactor"),
 			detail: t("data.one.publicFactorRule", {
