@@ -50,6 +50,7 @@ export async function computeReleaseDraft(
 			label: inputs.quantityLabels.get(one.quantity),
 		})),
 		seconds,
+		heldAgainst: inputs.heldAgainst,
 		gap: protection.loss && gapOf(protection.loss),
 	});
 	await transact({ kind: "network" }, async (trx) => {
@@ -80,14 +81,20 @@ async function protectWatched(
 	}
 }
 
-/** What the releases before tell, which this one is held against. */
-function whatIsPublic(table: ProtectionTable, { rules, method, earlier, holdings }: DraftInputs): ProtectOptions {
-	if (earlier.length === 0) return {};
+/** What the releases before tell, and those of other surveys of the season, which this one is held against. */
+function whatIsPublic(table: ProtectionTable, inputs: DraftInputs): ProtectOptions {
+	const { rules, method, earlier, holdings, others, baseKeys } = inputs;
 	const areas = treeOf(method.areas);
+	const { cropKeys } = method;
 	const quantities = table.quantities.map(({ key }) => key);
 	return {
-		guard: guardRevision({ areas, quantities, rules, earlier, holdings }),
-		revision: { areas, cropKeys: method.cropKeys, earlier, holdings },
+		...(earlier.length > 0 && {
+			guard: guardRevision({ areas, quantities, rules, earlier, holdings }),
+			revision: { areas, cropKeys, earlier, holdings },
+		}),
+		...(others.length > 0 && {
+			surveys: { areas, cropKeys, quantities: baseKeys, rules, holdings, earlier, others },
+		}),
 	};
 }
 
