@@ -48,7 +48,7 @@ const part = (record: DataRecord, dimensions: TableDimension[]): Address => {
 	return Object.fromEntries(dimensions.map((one) => [one, at[one]]));
 };
 
-/** Groups by some dimensions: seasons from the earliest, measures and crops as chosen, areas from wide to narrow. */
+/** Groups by some dimensions: seasons from the earliest, measures and crops in their own order, areas from wide to narrow. */
 function sorter(catalogue: TableCatalogue, selection: TableSelection) {
 	const seasons = catalogue.releases.toReversed().map(({ number }) => `${number}`);
 	const areas = chosenAreas(catalogue, selection).map(({ key }) => key);

@@ -70,7 +70,8 @@ export function readSelection(search: URLSearchParams, catalogue: TableCatalogue
 		const asked = given(search, field);
 		const unknown = asked.filter((code) => !listed.has(code));
 		if (unknown.length > 0) problems.push({ field, code: "codes_unknown", detail: { codes: told(unknown) } });
-		const taken = asked.filter((code): code is T => listed.has(code));
+		// In one order, whatever was named first: the same choice has the same address.
+		const taken = known.filter((code) => asked.includes(code));
 		if (taken.length > most) problems.push({ field, code: "choices_limit", detail: { max: most } });
 		return taken.slice(0, most);
 	};
@@ -110,26 +111,28 @@ function takeReleases(
 	take: (field: List, known: readonly string[], most: number) => string[],
 	problems: SelectionProblem[],
 ): number[] {
-	const taken = take(
-		"release",
-		releases.map(({ number }) => `${number}`),
-		tableLimits.releases,
-	).map(Number);
+	const taken = take("release", releases.map(({ number }) => `${number}`).toReversed(), tableLimits.releases).map(
+		Number,
+	);
 	const gone = releases.filter(({ number, withdrawn }) => withdrawn && taken.includes(number));
 	for (const { number } of gone) problems.push({ field: "release", code: "release_gone", detail: { number } });
 	return taken.filter((number) => !gone.some((release) => release.number === number));
 }
 
-/** Each list that a table cannot do without, where nothing was chosen and nothing worse is said of it already. */
+/** The lists that a table cannot do without and that are empty. */
+function emptyLists(selection: TableSelection): string[] {
+	const needed = (["release", "measure", "crop"] as const).filter((field) => selection[field].length === 0);
+	const noAreas = selection.kind.length + selection.area.length === 0;
+	const noColumns = selection.layout === "wide" && selection.columns.length === 0;
+	return [...needed, ...(noAreas ? ["kind"] : []), ...(noColumns ? ["columns"] : [])];
+}
+
+/** Each such list, unless something worse is said of it already. */
 function missing(selection: TableSelection, problems: SelectionProblem[]): SelectionProblem[] {
 	const said = new Set(problems.map(({ field }) => field));
-	const empty = (["release", "measure", "crop"] as const).filter((field) => selection[field].length === 0);
-	const fields: string[] = [
-		...empty,
-		...(selection.kind.length + selection.area.length === 0 ? ["kind"] : []),
-		...(selection.layout === "wide" && selection.columns.length === 0 ? ["columns"] : []),
-	];
-	const none = fields.filter((field) => !said.has(field)).map((field) => ({ field, code: "choose_some" }));
+	const none = emptyLists(selection)
+		.filter((field) => !said.has(field))
+		.map((field) => ({ field, code: "choose_some" }));
 	const all = selection.layout === "wide" && selection.columns.length === tableDimensions.length;
 	return all ? [...none, { field: "columns", code: "rows_left" }] : none;
 }
@@ -142,12 +145,7 @@ function tooLarge(selection: TableSelection, catalogue: TableCatalogue): Selecti
 
 /** Whether there is a table to show and to take: some problems only leave a part of what was asked for out. */
 export const canBeTold = ({ selection, problems }: ReadSelection): boolean =>
-	selection.release.length > 0 &&
-	selection.measure.length > 0 &&
-	selection.crop.length > 0 &&
-	selection.kind.length + selection.area.length > 0 &&
-	!problems.some(({ code }) => stopping.has(code));
-const stopping = new Set(["choose_some", "rows_left", "cells_limit"]);
+	emptyLists(selection).length === 0 && !problems.some(({ code }) => code === "rows_left" || code === "cells_limit");
 
 /** Where one begins: the latest season and those before it of the same form, crop by crop, for the whole network. */
 function beginning(catalogue: TableCatalogue): Omit<TableSelection, "revisions" | "q" | "page"> {

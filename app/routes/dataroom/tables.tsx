@@ -58,7 +58,7 @@ export default function Tables({ loaderData }: Route.ComponentProps) {
 		<Page title={t("tables.title")} lead={t("tables.lead")}>
 			{/* While somebody chooses, a problem is said beside its field and takes no focus away. */}
 			{state === "served" && <ErrorSummary problems={problems} labels={labels} />}
-			<TableForm {...loaderData} />
+			<TableForm {...loaderData} busy={busy} />
 			<TableResult {...loaderData} busy={busy} />
 		</Page>
 	);

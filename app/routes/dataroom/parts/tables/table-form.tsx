@@ -6,6 +6,7 @@ import { CheckField } from "#app/components/check-field.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
 import { cropsOf, kindOrder, measuresOf } from "#app/publish/tables/catalogue.ts";
 import { shownParts, statesOf, tableDimensions, tableLayouts } from "#app/publish/tables/selection.ts";
 import { NamedAreas } from "./named-areas.tsx";
@@ -13,13 +14,18 @@ import { useTableLabels } from "./table-labels.ts";
 import type { TablePage } from "./table-page.ts";
 
 type FormProps = Pick<TablePage, "catalogue" | "selection" | "problems">;
+type WholeFormProps = FormProps & Pick<TablePage, "table"> & { busy: boolean };
 
 /**
  * Every choice in one form sent by GET, so that its address is the table's. With scripts it is sent by itself a moment after
- * each change; nothing else on the page moves then.
+ * each change; what it comes to is said in its last line, which stays in sight.
  */
-export function TableForm(props: FormProps) {
+export function TableForm({ table, busy, ...props }: WholeFormProps) {
 	const { t } = useTranslation("dataroom");
+	const format = useFormat();
+	const told =
+		table && t("tables.count", { rows: format.number(table.rowCount), cells: format.number(table.cellCount) });
+	const said = busy ? t("tables.loading") : (told ?? t("tables.noTable"));
 	const submit = useSubmit();
 	const timer = useRef<ReturnType<typeof setTimeout>>(undefined);
 	useEffect(() => () => clearTimeout(timer.current), []);
@@ -34,8 +40,12 @@ export function TableForm(props: FormProps) {
 				<AreaChoices {...props} />
 				<LayoutChoices {...props} />
 			</div>
-			<div className="mb-5">
+			<div className="sticky bottom-0 flex flex-wrap items-center gap-x-5 gap-y-2 border-t border-rule bg-paper py-3">
 				<Button>{t("tables.show")}</Button>
+				<output className="text-quiet">{said}</output>
+				<a href="#table" className="inline-flex min-h-11 items-center">
+					{t("tables.toTable")}
+				</a>
 			</div>
 		</Form>
 	);

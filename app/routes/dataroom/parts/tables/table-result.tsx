@@ -6,8 +6,8 @@ import { classes } from "#app/components/classes.ts";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
-import { useFormat } from "#app/i18n/use-format.ts";
 import { countCells } from "#app/publish/tables/catalogue.ts";
+import { tableLimits } from "#app/publish/tables/limits.ts";
 import { TableDownloads } from "./table-downloads.tsx";
 import { TableGrid } from "./table-grid.tsx";
 import { TableMapView } from "./table-map.tsx";
@@ -20,15 +20,8 @@ type ResultProps = TablePage & { busy: boolean };
 export function TableResult(props: ResultProps) {
 	const { table, busy, state, catalogue, selection } = props;
 	const { t } = useTranslation("dataroom");
-	const format = useFormat();
-	const said = busy
-		? t("tables.loading")
-		: table
-			? t("tables.count", { rows: format.number(table.rowCount), cells: format.number(table.cellCount) })
-			: t("tables.noTable");
 	return (
-		<Section title={t("tables.result")}>
-			<output className="block min-h-6 text-quiet">{said}</output>
+		<Section title={t("tables.result")} id="table">
 			<div aria-busy={busy} className={classes(busy && "opacity-60")}>
 				{state === "failed" && <Failed />}
 				{state !== "failed" && !table && (
@@ -52,7 +45,9 @@ function Told(props: ResultProps & { table: NonNullable<TablePage["table"]> }) {
 		<>
 			<TableNotes notes={notes} catalogue={catalogue} />
 			{typeof table.chart === "string" ? (
-				<p className="mt-3 max-w-prose text-sm text-quiet">{t(`tables.noChart.${table.chart}`)}</p>
+				<p className="mb-4 max-w-prose text-sm text-quiet">
+					{t(`tables.noChart.${table.chart}`, { max: tableLimits.drawn })}
+				</p>
 			) : (
 				<Chart {...table.chart} alone />
 			)}
