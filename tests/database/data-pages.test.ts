@@ -1,11 +1,14 @@
 import { createHash } from "node:crypto";
 import type { Client } from "pg";
-import { type LoaderFunctionArgs, RouterContextProvider } from "react-router";
+import { createSession, type LoaderFunctionArgs, RouterContextProvider } from "react-router";
 import { afterAll, beforeAll, expect, test } from "vitest";
+import { sessionContext, type VisitorSession } from "#app/auth/session.server.ts";
 import type { Visitor } from "#app/auth/visitor.server.ts";
 import { visitorContext } from "#app/auth/visitor.server.ts";
 import { i18nextMiddleware } from "#app/i18n/middleware.server.ts";
 import { action as keysAction, loader as keysLoader } from "#app/routes/dataroom/keys.tsx";
+import { loader as dataroomLoader } from "#app/routes/dataroom/home.tsx";
+import { action as followAction } from "#app/routes/dataroom/follow.ts";
 import { loader as fileLoader } from "#app/routes/dataroom/file.ts";
 import { loader as citeLoader } from "#app/routes/public/cite.ts";
 import { loader as releaseLoader } from "#app/routes/public/data-release.tsx";
@@ -52,8 +55,9 @@ async function run<T>(work: (args: never) => Promise<T>, asked: Asked = {}): Pro
 		headers: { "accept-language": language },
 	});
 	const context = new RouterContextProvider();
+	context.set(sessionContext, createSession() as unknown as VisitorSession);
 	if (researcher !== undefined) {
-		const person = { personId, displayName: "Jonas Weir", email: null, language: null };
+		const person = { personId, displayName: "Jonas Weir", email: "jonas@lab.example", language: null };
 		const grants = { coordinator: false, researcher, stateFips: [], operationIds: [] };
 		context.set(visitorContext, { person, grants, link: null } satisfies Visitor);
 	}
@@ -135,6 +139,34 @@ test("a revision's page counts what changed, and a withdrawn one's tells machine
 	const withdrawn = await page(first.number);
 	expect([withdrawn.described, withdrawn.preview, withdrawn.files]).toEqual([[], [], []]);
 	expect((await page(second.number)).changes).toBeNull();
+});
+
+test("a researcher follows a release from its page and ends that in the data room, and others are told what is missing", async () => {
+	const { release } = await run(releaseLoader, { params: ofRelease() });
+	const following = async (researcher?: boolean) =>
+		(await run(releaseLoader, { params: ofRelease(), researcher })).following;
+	const follow = (intent: string, researcher?: boolean, seriesId = release.seriesId) =>
+		run(followAction, { form: { seriesId, intent, release: `${made.number}` }, researcher });
+	expect([await following(), await following(false), await following(true)]).toEqual([
+		"signed_out",
+		"no_researcher",
+		"no",
+	]);
+	await expect(follow("follow")).rejects.toMatchObject({ init: { status: 401 } });
+	await expect(follow("follow", false)).rejects.toMatchObject({ init: { status: 403 } });
+	await expect(follow("follow", true, "0193b2d2-7a57-4e7c-9a39-5b1f6f0a7a11")).rejects.toMatchObject({
+		init: { status: 404 },
+	});
+	await expect(follow("adopt", true)).rejects.toMatchObject({ init: { status: 404 } });
+
+	expect((await follow("follow", true)).headers.get("location")).toBe(`/data/${made.number}#follow`);
+	expect(await following(true)).toBe("yes");
+	const followed = async () =>
+		(await run(dataroomLoader, { researcher: true })).follows.map(({ seriesId }) => seriesId);
+	expect(await followed()).toEqual([release.seriesId]);
+	await run(followAction, { form: { seriesId: release.seriesId, intent: "unfollow" }, researcher: true });
+	expect(await followed()).toEqual([]);
+	expect(await following(true)).toBe("no");
 });
 
 test("the catalogue finds releases by word, season, state and fate", async () => {
