@@ -40,6 +40,9 @@ export default [
 		route("*", "routes/public/not-found.tsx"),
 	]),
 	route("reports.atom", "routes/public/report-feed.ts"),
+	route("reports/photos/:photoId", "routes/public/report-photo.ts"),
+	route("desk/report-photos/:photoId", "routes/desk/report-photo.ts"),
+	route("network/report-photos/:photoId", "routes/network/report-photo.ts"),
 	route("reports/:slug/:file", "routes/public/report-file.ts"),
 	route("map/counties.json", "routes/public/map-counties.ts"),
 	route("map/:file", "routes/public/map-file.ts"),
@@ -170,6 +173,7 @@ export default [
 			route("reports", "routes/desk/reports.tsx"),
 			route("reports/:reportId", "routes/desk/report.tsx"),
 			route("reports/:reportId/versions", "routes/desk/report-versions.tsx"),
+			route("reports/:reportId/photos", "routes/desk/report-photos.tsx"),
 		]),
 	]),
 

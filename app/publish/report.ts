@@ -34,6 +34,8 @@ export const Block = z.discriminatedUnion("type", [
 		kind: z.enum(["district", "state"]),
 	}),
 	z.object({ id, type: z.literal("caution"), key: z.enum(cautionKeys) }),
+	/** A photo that consent was given for, by its id, empty until one is chosen; `alt` says what it shows to who cannot see it. */
+	z.object({ id, type: z.literal("photo"), photo: z.uuid().or(z.literal("")).default(""), alt: DraftWords }),
 ]);
 export type Block = z.infer<typeof Block>;
 export type BlockType = Block["type"];
@@ -46,6 +48,7 @@ export const blockTypes = [
 	"crops",
 	"chart",
 	"caution",
+	"photo",
 ] as const satisfies BlockType[];
 
 export const ReportContent = z.object({
@@ -123,6 +126,18 @@ export function referencesOf({ title, summary, blocks }: ReportContent): Referen
 	return [...inWords(title), ...inWords(summary), ...inBlocks];
 }
 
+/** The photos that a report shows. */
+export const photosOf = ({ blocks }: Pick<ReportContent, "blocks">): string[] =>
+	blocks.flatMap((block) => (block.type === "photo" && block.photo ? [block.photo] : []));
+
+/** Without photos other than those of the report itself: for others nobody gave consent here. */
+export function withOwnPhotos(content: ReportContent, own: ReadonlySet<string>): ReportContent {
+	const blocks = content.blocks.map((block) =>
+		block.type === "photo" && !own.has(block.photo) ? { ...block, photo: "" as const } : block,
+	);
+	return { ...content, blocks };
+}
+
 /** The crops that a report tells of; "all" where it tells of all together, or sets all side by side. */
 export function cropsOf(content: ReportContent): string[] {
 	const inTexts = referencesOf(content).flatMap((one) => (one.measure === cellCounts ? [] : [one.crop]));
@@ -143,7 +158,11 @@ function textsOf(
 		["title", title],
 		["summary", summary],
 		...blocks.flatMap((block, index): [string, DraftWords][] =>
-			"text" in block ? [[`blocks[${index}].text`, block.text]] : [],
+			"text" in block
+				? [[`blocks[${index}].text`, block.text]]
+				: "alt" in block
+					? [[`blocks[${index}].alt`, block.alt]]
+					: [],
 		),
 	];
 	return words.flatMap(([name, { en, es }]): [string, string][] => [
@@ -153,7 +172,7 @@ function textsOf(
 }
 
 /**
- * What keeps a report from being submitted: texts missing in a language, and no block at all.
+ * What keeps a report from being submitted: texts missing in a language, a photo not chosen, and no block at all.
  * @param correction what a correction says of itself; null for a first version.
  */
 export function missingWords(
@@ -162,6 +181,8 @@ export function missingWords(
 ): { field: string; code: "empty" }[] {
 	const missing = textsOf(content, correction).flatMap(([field, text]) => (text.trim() ? [] : [field]));
 	if (content.blocks.length === 0) missing.push("blocks");
+	for (const [index, block] of content.blocks.entries())
+		if (block.type === "photo" && !block.photo) missing.push(`blocks[${index}].photo`);
 	return missing.map((field) => ({ field, code: "empty" }));
 }
 

@@ -10,7 +10,8 @@ import type { Release, ReleaseMeasure } from "./release.ts";
 import { findReleaseById, listAreas, listCoveredStates } from "./releases.server.ts";
 import { type EarlierFigure, lookUp, readSource, type Source, told, type Told } from "./report-source.server.ts";
 import { type ListedReport, listPublishedReports, listVersions } from "./reports.server.ts";
-import { type Block, type CautionKey, type DraftWords, partsOf, type ReportContent } from "./report.ts";
+import { listPhotoSizes, type PhotoSize } from "./report-photo.server.ts";
+import { type Block, type CautionKey, type DraftWords, partsOf, photosOf, type ReportContent } from "./report.ts";
 import { resolveChart, type ResolvedChart } from "./resolved-chart.server.ts";
 
 /** A figure looked up; null where the release holds no such figure. Of the season before, its measure has that season. */
@@ -35,6 +36,7 @@ export type ResolvedBlock =
 	| { id: string; type: "crops"; measure: Told; areaName: string; cells: CropCell[] }
 	| { id: string; type: "chart"; drawn: ResolvedChart }
 	| { id: string; type: "caution"; key: CautionKey }
+	| { id: string; type: "photo"; photo: string; alt: DraftWords; size: PhotoSize | null }
 	| { id: string; type: "missing" };
 export type ResolvedReport = {
 	title: ResolvedWords;
@@ -47,12 +49,12 @@ export type ResolvedReport = {
 /** A report with every reference looked up in its release, as the reader's role sees it. A withheld figure has no number. */
 export async function resolveReport(content: ReportContent, release: Release): Promise<ResolvedReport> {
 	const source = await readSource(content, release);
-	const states = await listCoveredStates(release.releaseId);
+	const [states, sizes] = await Promise.all([listCoveredStates(release.releaseId), listPhotoSizes(photosOf(content))]);
 	return {
 		title: resolveWords(content.title, source),
 		summary: resolveWords(content.summary, source),
 		blocks: [
-			...(await Promise.all(content.blocks.map((block) => resolveBlock(block, source)))),
+			...(await Promise.all(content.blocks.map((block) => resolveBlock(block, source, sizes)))),
 			...missingCautions(content, [...source.measures.values()]).map((key): ResolvedBlock => ({
 				id: `caution-${key}`,
 				type: "caution",
@@ -64,8 +66,12 @@ export async function resolveReport(content: ReportContent, release: Release): P
 	};
 }
 
-async function resolveBlock(block: Block, source: Source): Promise<ResolvedBlock> {
+async function resolveBlock(block: Block, source: Source, sizes: Record<string, PhotoSize>): Promise<ResolvedBlock> {
 	const { id } = block;
+	if (block.type === "photo") {
+		const { photo, alt } = block;
+		return photo ? { id, type: "photo", photo, alt, size: sizes[photo] ?? null } : { id, type: "missing" };
+	}
 	if (block.type === "caution") return { id, type: "caution", key: block.key };
 	if (block.type === "heading") return { id, type: "heading", text: resolveWords(block.text, source) };
 	if (block.type === "text") return { id, type: "text", text: resolveText(block.text, source) };

@@ -13,10 +13,16 @@ import type { ToldBlock, ToldCell, ToldMeasure } from "./report-data.ts";
 import { Passages } from "./passages.tsx";
 import { useToldText } from "./told-words.tsx";
 
-type ReportBlocksProps = { blocks: ToldBlock[]; season: number; picture: DrawnPicture | null };
+type ReportBlocksProps = {
+	blocks: ToldBlock[];
+	season: number;
+	picture: DrawnPicture | null;
+	/** Where a photo is: readers' own address shows those of published reports alone. */
+	photoAddress: (photoId: string) => string;
+};
 
 /** The blocks of a report in their order. */
-export function ReportBlocks({ blocks, season, picture }: ReportBlocksProps) {
+export function ReportBlocks({ blocks, season, picture, photoAddress }: ReportBlocksProps) {
 	const { t, i18n } = useTranslation("public");
 	const toldText = useToldText();
 	return blocks.map((block) => {
@@ -41,6 +47,18 @@ export function ReportBlocks({ blocks, season, picture }: ReportBlocksProps) {
 				return <Chart key={block.id} drawn={block.drawn} season={season} />;
 			case "caution":
 				return <Caution key={block.id} caution={block.key} />;
+			case "photo":
+				return (
+					<figure key={block.id} className="my-6 break-inside-avoid">
+						<img
+							src={photoAddress(block.photo)}
+							alt={wordsIn(block.alt, i18n.language)}
+							width={block.size?.widthPx}
+							height={block.size?.heightPx}
+							className="h-auto max-h-[70vh] w-auto max-w-full border border-line"
+						/>
+					</figure>
+				);
 			case "missing":
 				return (
 					<p key={block.id} className="my-4 text-quiet">

@@ -103,5 +103,7 @@ function newBlock(type: BlockType, id: string, { measure, crop, area }: Referenc
 			return { id, type, chart: "crops", measure, crop, area, kind: "district" };
 		case "caution":
 			return { id, type, key: "local_advice" };
+		case "photo":
+			return { id, type, photo: "", alt: { en: "", es: "" } };
 	}
 }

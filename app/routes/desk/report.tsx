@@ -12,6 +12,7 @@ import { missingCautions } from "#app/publish/cautions.ts";
 import { listComments } from "#app/publish/drafting/report-comments.server.ts";
 import { startCorrection } from "#app/publish/drafting/report-correction.server.ts";
 import { listFileStates } from "#app/publish/drafting/report-files.server.ts";
+import { listReportPhotos } from "#app/publish/drafting/report-photos.server.ts";
 import { findReport, needsLook } from "#app/publish/drafting/reports.server.ts";
 import { findReleaseById, listAreas, listCrops, listMeasures } from "#app/publish/releases.server.ts";
 import { resolveReport } from "#app/publish/resolved-report.server.ts";
@@ -33,6 +34,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 			report,
 			comments: await listComments(trx, desk.viewer, reportId),
 			files: report.state === "published" ? await listFileStates(trx, reportId) : [],
+			photos: await listReportPhotos(trx, desk.viewer, reportId),
 		};
 	});
 	const release = found && (await findReleaseById(found.report.releaseId));
@@ -78,7 +80,8 @@ async function correct(desk: Access<Associate>, reportId: string) {
 
 export default function DeskReport({ loaderData, actionData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("public");
-	const { report, offered, cautionsAdded, told, comments } = loaderData;
+	const { report, cautionsAdded, told, comments, photos } = loaderData;
+	const offered = { ...loaderData.offered, photos };
 	const title = wordsIn(report.content.title, i18n.language) || t("report_editor.untitled");
 	const address = href("/desk/reports/:reportId", { reportId: report.reportId });
 	const answer = actionData && "content" in actionData ? actionData : undefined;
@@ -92,9 +95,14 @@ export default function DeskReport({ loaderData, actionData }: Route.ComponentPr
 				</>
 			}
 			actions={
-				<Link to={href("/desk/reports/:reportId/versions", { reportId: report.reportId })}>
-					{t("report:edits.link")}
-				</Link>
+				<div className="flex flex-wrap gap-x-6">
+					<Link to={href("/desk/reports/:reportId/photos", { reportId: report.reportId })}>
+						{t("report:photos.link")}
+					</Link>
+					<Link to={href("/desk/reports/:reportId/versions", { reportId: report.reportId })}>
+						{t("report:edits.link")}
+					</Link>
+				</div>
 			}
 		>
 			{report.state === "draft" && <ReportViews address={address} preview={told !== null} />}

@@ -108,7 +108,7 @@ export default function NetworkReport({ loaderData, actionData }: Route.Componen
 					{wordsIn(correction, i18n.language)}
 				</Notice>
 			)}
-			<ReportPreview told={told} published={state === "published"} />
+			<ReportPreview area="network" told={told} published={state === "published"} />
 			<ReportDecisions state={state} own={own} tomorrow={tomorrow} sent={actionData} />
 		</Page>
 	);

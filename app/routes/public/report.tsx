@@ -76,6 +76,8 @@ export default function Report({ loaderData: { withdrawn, page } }: Route.Compon
 	return page ? <ReportPage {...page} /> : <WithdrawnReport release={withdrawn} />;
 }
 
+const photoAddress = (photoId: string) => href("/reports/photos/:photoId", { photoId });
+
 type PartProps = NonNullable<Route.ComponentProps["loaderData"]["page"]>;
 
 function ReportPage(page: PartProps) {
@@ -94,7 +96,7 @@ function ReportPage(page: PartProps) {
 				<ReleaseNotice release={release} />
 				<Corrections {...page} />
 				<div className="mt-6">
-					<ReportBlocks blocks={told.blocks} season={told.season} picture={told.picture} />
+					<ReportBlocks blocks={told.blocks} season={told.season} picture={told.picture} photoAddress={photoAddress} />
 				</div>
 				<ReportFooter {...page} />
 			</article>

@@ -5,6 +5,7 @@ import { Confirm } from "#app/components/confirm.tsx";
 import type { Problem } from "#app/lib/parse-form.ts";
 import { type Block, cautionKeys, tableKinds } from "#app/publish/report.ts";
 import { ChartFields } from "./report-editor-chart.tsx";
+import { PhotoFields } from "./report-editor-photo.tsx";
 import { AreaField, CropField, MeasureField, type Offered, TextPair } from "./report-editor-fields.tsx";
 
 type EditorBlockProps = { block: Block; index: number; last: boolean; offered: Offered; problems?: Problem[] };
@@ -88,6 +89,8 @@ function BlockFields({ block, name, label, offered, problems }: BlockFieldsProps
 					<p className="max-w-prose text-sm text-quiet">{t(`caution.${block.key}.body`)}</p>
 				</>
 			);
+		case "photo":
+			return <PhotoFields block={block} name={name} label={label} offered={offered} problems={problems} />;
 		case "chart":
 			return <ChartFields block={block} name={name} offered={offered} />;
 		default:

@@ -6,11 +6,17 @@ import { TextField } from "#app/components/text-field.tsx";
 import { type Language, wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
+import type { ReportPhoto } from "#app/publish/drafting/report-photos.server.ts";
 import type { ReleaseArea, ReleaseMeasure } from "#app/publish/release.ts";
 import { type DraftWords, eras, type ReportContent, typedFigures } from "#app/publish/report.ts";
 
-/** What a release holds to point to. */
-export type Offered = { measures: Pick<ReleaseMeasure, "key" | "label">[]; crops: string[]; areas: ReleaseArea[] };
+/** What a release holds to point to, and the photos that were added to the report. */
+export type Offered = {
+	measures: Pick<ReleaseMeasure, "key" | "label">[];
+	crops: string[];
+	areas: ReleaseArea[];
+	photos: ReportPhoto[];
+};
 
 type TextPairProps = {
 	name: string;
@@ -123,15 +129,16 @@ export function useFieldLabels(content: ReportContent): Record<string, string> {
 		["summary", t("report_editor.summary")],
 		["blocks", t("report_editor.blocks")],
 		...content.blocks.map(({ type }, index): [string, string] => [
-			`blocks[${index}].text`,
+			`blocks[${index}].${type === "photo" ? "alt" : "text"}`,
 			t("report_editor.blockNamed", { number: index + 1, type: t(`report_editor.types.${type}`) }),
 		]),
 	];
+	const photos = content.blocks.map((_, index) => [`blocks[${index}].photo`, t("report:photos.which")] as const);
 	const inLanguages = texts.flatMap(([name, label]) =>
 		(["en", "es"] as const).map((language): [string, string] => [
 			`${name}.${language}`,
 			t("report_editor.inLanguage", { label, language: t(`common:language.${language}`) }),
 		]),
 	);
-	return Object.fromEntries([...texts, ...inLanguages]);
+	return Object.fromEntries([...texts, ...photos, ...inLanguages]);
 }

@@ -1,10 +1,18 @@
 import { useTranslation } from "react-i18next";
+import { href } from "react-router";
 import { ReportBlocks } from "#app/components/report/report-blocks.tsx";
 import type { ToldReport } from "#app/components/report/report-data.ts";
 import { ToldText, useToldText } from "#app/components/report/told-words.tsx";
 
+/** Photos that are not published yet are shown to associates and to coordinators, each in their own area. */
+const photosAt = {
+	desk: (photoId: string) => href("/desk/report-photos/:photoId", { photoId }),
+	network: (photoId: string) => href("/network/report-photos/:photoId", { photoId }),
+};
+type ReportPreviewProps = { told: ToldReport; published?: boolean; area?: keyof typeof photosAt };
+
 /** A report as its readers will see it, marked as not published. */
-export function ReportPreview({ told, published = false }: { told: ToldReport; published?: boolean }) {
+export function ReportPreview({ told, published = false, area = "desk" }: ReportPreviewProps) {
 	const { t } = useTranslation("public");
 	const toldText = useToldText();
 	return (
@@ -14,7 +22,7 @@ export function ReportPreview({ told, published = false }: { told: ToldReport; p
 			<div className="mt-3 text-lg text-quiet">
 				<ToldText told={told.summary} />
 			</div>
-			<ReportBlocks blocks={told.blocks} season={told.season} picture={told.picture} />
+			<ReportBlocks blocks={told.blocks} season={told.season} picture={told.picture} photoAddress={photosAt[area]} />
 		</article>
 	);
 }

@@ -6,9 +6,10 @@ import { refusal } from "#app/lib/refusal.ts";
 import { CommentForm } from "#app/publish/drafting/decision.schema.ts";
 import { applyEdit, EditorForm } from "#app/publish/drafting/editing.ts";
 import { addComment, resolveComment } from "#app/publish/drafting/report-comments.server.ts";
+import { listReportPhotos } from "#app/publish/drafting/report-photos.server.ts";
 import { findReport, saveReport, submitReport } from "#app/publish/drafting/reports.server.ts";
 import { listCrops, listMeasures } from "#app/publish/releases.server.ts";
-import { missingWords, tooLongWords } from "#app/publish/report.ts";
+import { missingWords, tooLongWords, withOwnPhotos } from "#app/publish/report.ts";
 
 /** Saves what the editor sent and does its button's act. A page that is to be shown next comes back as an address. */
 export async function takeEdit(desk: Access<Associate>, reportId: string, sent: FormData) {
@@ -19,7 +20,10 @@ export async function takeEdit(desk: Access<Associate>, reportId: string, sent: 
 	if (!report) throw refusal("report_not_found");
 	const [measures, crops] = await Promise.all([listMeasures(report.releaseId), listCrops(report.releaseId)]);
 	const first = { measure: measures[0]?.key ?? "", crop: crops[0] ?? "all", area: "network" };
-	const { content, at } = applyEdit(form.value, first);
+	const photos = await desk.transaction((trx) => listReportPhotos(trx, desk.viewer, reportId));
+	const edited = applyEdit(form.value, first);
+	const content = withOwnPhotos(edited.content, new Set(photos.map(({ photoId }) => photoId)));
+	const { at } = edited;
 	const { verb, blockId } = form.value.intent;
 	const correction = report.version > 1 ? (form.value.correction ?? { en: "", es: "" }) : null;
 	const edit = verb === "overwrite" ? Number(blockId) || 0 : form.value.edit;
