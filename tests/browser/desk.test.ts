@@ -105,7 +105,7 @@ test("the coordinator grants a grower's operation and reads in the log who did w
 	expect(await axeFindings(coordinator)).toEqual([]);
 
 	await coordinator.goto(`${stack.baseUrl}/network/log?q=fenwick&show=survey`);
-	await coordinator.getByText("Sent a new personal link").waitFor();
+	await coordinator.getByRole("cell", { name: "Sent a new personal link" }).waitFor();
 	expect(await coordinator.getByText("Quail Bend").count()).toBe(0);
 	expect(await axeFindings(coordinator)).toEqual([]);
 	expect((await coordinator.goto(`${stack.baseUrl}/desk/growers`))?.status()).toBe(403);
