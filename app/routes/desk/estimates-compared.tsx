@@ -23,7 +23,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 
 /** What corrections have moved since the release was drafted. */
 export default function EstimatesCompared({ loaderData, params }: Route.ComponentProps) {
-	const { query, crops, draftedAt, timeZone, changed, page, pageCount, total } = loaderData;
+	const { query, crops, draftedAt, isReweighted, timeZone, changed, page, pageCount, total } = loaderData;
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	return (
@@ -41,6 +41,7 @@ export default function EstimatesCompared({ loaderData, params }: Route.Componen
 					<p className="mb-4 max-w-prose">
 						{t("compared.drafted", { moment: format.moment(draftedAt, timeZone) })}{" "}
 						{t("compared.changed", { count: changed, value: format.number(changed) })}
+						{isReweighted && ` ${t("compared.reweighted")}`}
 					</p>
 				)}
 				<Form method="get" className="mb-5 flex flex-wrap items-end gap-x-4 gap-y-3 *:mb-0 *:max-w-full">

@@ -34,6 +34,8 @@ export async function listComparedEstimates(trx: Trx, viewer: Associate, surveyI
 		measures: measures.map(({ key, label, unit, decimals }) => ({ key, label, unit, decimals, season: survey.season })),
 		statesNotHeld: survey.statesNotHeld,
 		draftedAt: draft?.method ? (draft.computedAt ?? draft.draftedAt) : null,
+		/** A draft that was sent back keeps the weights of its day. */
+		isReweighted: draft?.method ? draft.method.weighting !== survey.weighting : false,
 		timeZone: survey.timeZone,
 		changed: rows.filter((row) => row.changed).length,
 		...pageOf(sortCompared(shown, query), query.page),
