@@ -635,12 +635,13 @@ export interface LogEvent {
 }
 
 export interface PublishExpected {
-  again: boolean | null;
-  expected_at: Timestamp | null;
-  kind: string | null;
-  season: number | null;
-  state_fips: string[] | null;
-  title: Json | null;
+  again: boolean;
+  expected_at: Timestamp;
+  kind: string;
+  season: number;
+  source_id: string;
+  state_fips: string[];
+  title: Json;
 }
 
 export interface PublishReport {

@@ -1,4 +1,4 @@
-import type { Kysely } from "kysely";
+import { type Kysely, sql } from "kysely";
 import { z } from "zod";
 import { Words } from "#app/lib/words.ts";
 import { reader, type ReaderDB } from "./reader.server.ts";
@@ -31,6 +31,8 @@ export async function listExpected(db: Kysely<ReaderDB> = reader()): Promise<Exp
 	const rows = await db
 		.selectFrom("publish.expected")
 		.select(["kind", "title", "season", "expected_at", "again", "state_fips"])
+		// A minute that has passed is still to come where the queue is late; a survey has closed by then.
+		.where((eb) => eb.or([eb("kind", "<>", "survey_closes"), eb("expected_at", ">", sql<Date>`now()`)]))
 		.orderBy("expected_at")
 		.orderBy("kind")
 		.execute();

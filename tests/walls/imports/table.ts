@@ -118,6 +118,16 @@ export const exceptions: { from: string; to: string; because: string }[] = [
 		because: "which release tells of a survey is asked for a grower, who sees no draft of one",
 	},
 	{
+		from: "app/collect/personal-link.server.ts",
+		to: "app/auth/scope.server.ts",
+		because: "a link into a rehearsal takes it in hand, since no other transaction sees one",
+	},
+	{
+		from: "app/collect/rehearsal.server.ts",
+		to: "app/auth/scope.server.ts",
+		because: "who makes a rehearsal has it in hand from there on, since no other transaction sees one",
+	},
+	{
 		from: "app/collect/withdrawal.server.ts",
 		to: "app/auth/scope.server.ts",
 		because: "whether a release rests on an answer is asked for a grower, who sees no draft of one",
