@@ -50,7 +50,6 @@ export async function computeReleaseDraft(
 			label: inputs.quantityLabels.get(one.quantity),
 		})),
 		seconds,
-		heldAgainst: inputs.heldAgainst,
 		gap: protection.loss && gapOf(protection.loss),
 	});
 	await transact({ kind: "network" }, async (trx) => {
@@ -81,20 +80,14 @@ async function protectWatched(
 	}
 }
 
-/** What the releases before tell, and those of other surveys of the season, which this one is held against. */
-function whatIsPublic(table: ProtectionTable, inputs: DraftInputs): ProtectOptions {
-	const { rules, method, earlier, holdings, others, baseKeys } = inputs;
+/** What the releases before tell, which this one is held against. */
+function whatIsPublic(table: ProtectionTable, { rules, method, earlier, holdings }: DraftInputs): ProtectOptions {
+	if (earlier.length === 0) return {};
 	const areas = treeOf(method.areas);
-	const { cropKeys } = method;
 	const quantities = table.quantities.map(({ key }) => key);
 	return {
-		...(earlier.length > 0 && {
-			guard: guardRevision({ areas, quantities, rules, earlier, holdings }),
-			revision: { areas, cropKeys, earlier, holdings },
-		}),
-		...(others.length > 0 && {
-			surveys: { areas, cropKeys, quantities: baseKeys, rules, holdings, earlier, others },
-		}),
+		guard: guardRevision({ areas, quantities, rules, earlier, holdings }),
+		revision: { areas, cropKeys: method.cropKeys, earlier, holdings },
 	};
 }
 

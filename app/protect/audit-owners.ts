@@ -17,8 +17,6 @@ export interface KnownPart {
 }
 
 export interface OwnersFound {
-	/** Unknowns that somebody finds too closely who knows nothing besides. */
-	narrow: number[];
 	/** Unknowns that some owner finds too closely. */
 	failed: number[];
 	/** Those owners. */
@@ -48,18 +46,15 @@ export function tryOwners(
 	const column = new Map(block.unknowns.map((unknown, place) => [unknown, place]));
 	const parts = block.unknowns.map(partsOf);
 	const here = targets.filter(({ unknown }) => column.has(unknown));
-	const found: OwnersFound = { narrow: [], failed: [], objectors: [], tried: 0, runs: 0 };
+	const found: OwnersFound = { failed: [], objectors: [], tried: 0, runs: 0 };
 	// Where nothing ties an unknown to others, knowing others does not help.
-	if (block.rows.length === 0 || here.length === 0) return found;
+	if (block.rows.length === 0 || here.length === 0 || parts.every((list) => list.length === 0)) return found;
 	const search = new PointSearch(solver, block);
 	const knows = holdsByOwner(block, parts);
 	const objectors = new Set<string>();
 	const safe = (place: number, distance: number): boolean => {
 		const point = search.reach(place, distance);
-		if (!point) {
-			if (found.narrow.at(-1) !== block.unknowns[place]) found.narrow.push(block.unknowns[place]!);
-			return true; // who knows nothing besides finds it already
-		}
+		if (!point) return true; // the intervals tell of that
 		const own = new Map(parts[place]!.map((part) => [part.owner, part]));
 		const against = [...objecting(block, parts, point)].filter((owner) => {
 			const part = own.get(owner);

@@ -14,9 +14,9 @@ export type { Interval } from "./audit-system.ts";
 
 /**
  * Who is tried: `everybody` knows what is shown; an `owner` also the own answers; those of one `line` are taken together, as
- * their sum is known; `revision` is who kept an earlier release and subtracts; `survey` is who keeps those of other surveys.
+ * their sum is known; `revision` is who kept an earlier release and subtracts.
  */
-export type AttackerKind = "everybody" | "owner" | "line" | "revision" | "survey";
+export type AttackerKind = "everybody" | "owner" | "line" | "revision";
 
 /** A withheld cell that can be worked out too closely. The key is for the desk; no value is told. */
 export interface AuditFailure {
@@ -25,10 +25,9 @@ export interface AuditFailure {
 	quantity: string | null;
 	/**
 	 * `solved`: known exactly; `narrow`: closer than its level; `by_owner`: too close for an owner who knows a part; `in_line`:
-	 * of it and others of its line the sum is found too closely; `by_revision`: by subtracting an earlier release;
-	 * `by_survey`: beside another survey's release, whose withheld cell it may be too.
+	 * of it and others of its line the sum is found too closely; `by_revision`: by subtracting an earlier release.
 	 */
-	kind: "solved" | "narrow" | "by_owner" | "in_line" | "by_revision" | "by_survey";
+	kind: "solved" | "narrow" | "by_owner" | "in_line" | "by_revision";
 }
 
 /** What a reviewer may read: counts and relative widths, no withheld number. */

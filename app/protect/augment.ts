@@ -1,7 +1,6 @@
 import { relationsAmong } from "./relations.ts";
 import { LinearProgram, type Column, type Solver } from "./solver.ts";
 import { childrenOf, type ProtectionTable } from "./table.ts";
-import { isSeen, type Told } from "./told.ts";
 
 /** Above this many cells with growers, a way to move a cell is sought near it first. */
 const SMALL_TABLE = 1500;
@@ -42,8 +41,6 @@ export class Augmenter {
 		readonly weights: readonly number[],
 		readonly hidden: Set<number>,
 		readonly locked: Set<number>,
-		/** What anybody sees: in these quantities these cells do not move. */
-		readonly told?: Told,
 	) {
 		const { chainOf, membersOf } = nearness(table);
 		this.#chains = chainOf;
@@ -103,14 +100,10 @@ export class Augmenter {
 
 	#bound(scope: Scope, quantity: string, p: number, free: boolean) {
 		const index = scope.cells[p]!;
-		const may = free && this.#mayMove(quantity, index);
+		const may = free && !this.locked.has(index);
 		const value = this.table.cells[index]!.quantities[quantity]!.total / scope.scale;
 		scope.program.setBounds(2 * p, 0, may ? Infinity : 0);
 		scope.program.setBounds(2 * p + 1, 0, may ? value : 0);
-	}
-
-	#mayMove(quantity: string, index: number): boolean {
-		return !this.locked.has(index) && !isSeen(this.told, quantity, index);
 	}
 
 	#scope(root: string, quantityKey: string): Scope {
@@ -124,7 +117,7 @@ export class Augmenter {
 		const scale = cells.reduce((sum, index) => sum + value(index), 0) / Math.max(1, cells.length) || 1;
 		const columns = cells.flatMap((index): Column[] => {
 			const cost = this.hidden.has(index) ? HIDDEN_COST : this.weights[index]!;
-			const free = this.#mayMove(quantityKey, index);
+			const free = !this.locked.has(index);
 			return [
 				{ cost, lower: 0, upper: free ? Infinity : 0 },
 				{ cost, lower: 0, upper: free ? value(index) / scale : 0 },

@@ -6,7 +6,6 @@ import { lossByCell, type Objective, sumOver } from "./loss.ts";
 import { chooseShields, type ShieldOptions } from "./shields.ts";
 import type { Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
-import { toldToReckoner } from "./told.ts";
 
 export interface ChoiceOptions extends ShieldOptions {
 	objective: Objective;
@@ -49,13 +48,7 @@ export interface Choice {
 
 /** What is to be chosen, taken apart. Blocks do not depend on each other: they can be chosen in any order and thread. */
 export function planChoice(table: ProtectionTable, own: readonly OwnCell[], options: ChoiceOptions): Plan {
-	const { told } = options;
-	const reckoner = toldToReckoner(told);
-	const attackers = [
-		everybody(table, told),
-		...(options.ownersAttack ? soleOwners(table, told) : []),
-		...(reckoner ? [{ ...everybody(table, reckoner), name: "another survey" }] : []),
-	];
+	const attackers = [everybody(table, options.told), ...(options.ownersAttack ? soleOwners(table, options.told) : [])];
 	const loss = lossByCell(table, options.objective);
 	return { table, own, options, attackers, loss, blocks: blocksOfTable(table, options.blockCells) };
 }

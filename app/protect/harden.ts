@@ -14,8 +14,6 @@ interface Hardening {
 	own: readonly OwnCell[];
 	/** Cells that tell nothing when withheld, as they are known. */
 	useless: ReadonlySet<number>;
-	/** Cells that other surveys of the season withhold. Who finds something beside these finds less once all are withheld. */
-	elsewhere: ReadonlySet<number>;
 	audit: (shields: ReadonlySet<number>) => AuditResult;
 	more: (wishes: readonly OwnCell[], given: ReadonlySet<number>) => Set<number> | null;
 }
@@ -24,8 +22,7 @@ interface Hardening {
  * Withholds more until the audit passes. Shields are chosen against the attackers of a list; the audit also tries every
  * owner's part of every cell and the sums of lines, of which only few matter and only once the shields are known. What it
  * finds is wished for anew: more room for a cell that an owner narrows down, one cell more of a line whose sum tells.
- * What comes out beside another survey is first met by withholding what that one withholds: whatever could move there then
- * moves here too. Nothing withheld is shown again, so that each round is nearer to the end, at which everything is withheld.
+ * Nothing withheld is shown again, so that each round is nearer to the end, at which everything is withheld.
  */
 export function harden(chosen: ReadonlySet<number>, work: Hardening): { shields: Set<number>; audit: AuditResult } {
 	const own = new Set(work.own.map(({ index }) => index));
@@ -35,44 +32,13 @@ export function harden(chosen: ReadonlySet<number>, work: Hardening): { shields:
 		const audit = work.audit(shields);
 		if (audit.passed) return { shields, audit };
 		const given = new Set([...own, ...shields]);
-		const alike = audit.failures.some(({ kind }) => kind === "by_survey") ? work.elsewhere : new Set<number>();
-		if ([...alike].some((index) => !given.has(index))) {
-			shields = new Set([...shields, ...alike].filter((index) => !own.has(index)));
-			continue;
-		}
 		const wishes = wishesFor(work, audit.failures, given, asked);
-		const added = wishes.length > 0 ? granted(work, wishes, given) : null;
+		const added = work.more(wishes, given);
 		if (!added) break;
-		const before = shields.size;
 		shields = new Set([...shields, ...wishes.map(({ index }) => index), ...added].filter((index) => !own.has(index)));
-		// Beside another survey, room in this one may be no room in both: then a line needs one cell more.
-		if (shields.size === before) for (const index of oneMoreALine(work, wishes, given)) shields.add(index);
 	}
 	const all = [...work.table.cells.keys()].filter((index) => work.table.cells[index]!.owners > 0 && !own.has(index));
 	return { shields: new Set(all), audit: work.audit(new Set(all)) };
-}
-
-/** Of every line that a wish lies in, the least cell that is shown. */
-function oneMoreALine(work: Hardening, wishes: readonly OwnCell[], given: ReadonlySet<number>): number[] {
-	const { table } = work;
-	const wished = new Set(wishes.map(({ index }) => index));
-	return table.equations.flatMap(({ total, parts }) => {
-		const line = [...parts, total];
-		if (!line.some((index) => wished.has(index))) return [];
-		const open = line.filter(
-			(index) => table.cells[index]!.owners > 0 && !given.has(index) && !work.useless.has(index),
-		);
-		const least = Math.min(...open.map((index) => shareOfAll(table, index)));
-		return open.filter((index) => shareOfAll(table, index) === least).slice(0, 1);
-	});
-}
-
-/** Shields for all wishes, or, where they cannot all be met, for those that can; null for none. */
-function granted({ more }: Hardening, wishes: readonly OwnCell[], given: ReadonlySet<number>): Set<number> | null {
-	const all = more(wishes, given);
-	if (all || wishes.length === 1) return all;
-	const some = wishes.flatMap((wish) => more([wish], given) ?? []);
-	return some.length > 0 ? new Set(some.flatMap((added) => [...added])) : null;
 }
 
 /** @param asked how many times each cell's room was asked for: each time it is doubled. */
@@ -92,9 +58,7 @@ function wishesFor(
 	const ownOf = new Map(work.own.map((cell) => [cell.index, cell]));
 	const narrow = groupFailures(failures.filter(({ kind }) => kind !== "in_line"));
 	const cells = [...narrow].flatMap(([key, quantities]): OwnCell[] => {
-		const index = position.get(key);
-		// A cell of another survey that this one does not have can only be helped by withholding everything.
-		if (index === undefined || table.cells[index]!.owners === 0) return [];
+		const index = position.get(key)!;
 		const cell = ownOf.get(index) ?? { index, reasons: [], levels: leastLevels(work, index) };
 		const factor = 2 * again(key);
 		const levels = Object.entries(cell.levels).map(([quantity, level]) => {

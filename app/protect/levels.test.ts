@@ -18,9 +18,9 @@ const table = buildTable({
 	quantities: [{ key: "lb" }],
 	cells: [cell("all", 100, 90, 80, 80, 70, 60, 50, 40), cell("many", 90, 80, 70, 60, 50, 40), cell("few", 100, 80)],
 });
-const levels = (revision?: Map<string, Record<string, number>>) =>
+const levels = (keptBack?: Map<string, Record<string, number>>) =>
 	Object.fromEntries(
-		ownCells(table, defaultRules, { revision }).map(({ index, reasons, levels: of }) => [
+		ownCells(table, defaultRules, keptBack).map(({ index, reasons, levels: of }) => [
 			table.cells[index]!.key,
 			[reasons.join(" "), of.lb],
 		]),

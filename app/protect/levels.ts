@@ -1,3 +1,4 @@
+import type { RevisionGuard } from "./revision.ts";
 import { ownReasons, shortfall, type OwnReason, type ProtectionRules } from "./rules.ts";
 import type { ProtectionTable, Quantity, TableCell } from "./table.ts";
 
@@ -10,11 +11,6 @@ export interface OwnCell {
 	levels: Readonly<Record<string, number>>;
 }
 
-/** Cells that must be withheld for what other releases tell, each with the room that this asks for, by quantity. */
-export type KeptBack = Partial<
-	Record<"revision" | "other_survey", ReadonlyMap<string, Readonly<Record<string, number>>>>
->;
-
 /**
  * Cells withheld for their own sake, with their protection levels, in the table's order.
  * - dominated in a quantity: p/100 of the largest less the remainder, so that the second largest owner cannot estimate
@@ -26,25 +22,26 @@ export type KeptBack = Partial<
  * - a count: at least 1, so that another whole number is possible;
  * - a quantity that is 0 though owners answered (all was lost): p/100 of the mean owner in the nearest area or crop
  *   group that has any, upwards only. Where the whole table has none the zero is plain to see, and no level is asked.
- * @param keptBack cells that `guardRevision` and `guardSurveys` keep back, with the room that each asks for: the widest
- *   counts, and for a cell without a reason of its own these alone.
+ * @param keptBack cells that `guardRevision` keeps back, with the room that it asks for: the wider one counts, and for a cell
+ *   without another reason this alone.
  */
-export function ownCells(table: ProtectionTable, rules: ProtectionRules, keptBack: KeptBack = {}): OwnCell[] {
+export function ownCells(
+	table: ProtectionTable,
+	rules: ProtectionRules,
+	keptBack: RevisionGuard["keptBack"] = new Map(),
+): OwnCell[] {
 	const wholes = wholesOf(table);
 	return table.cells.flatMap((cell, index) => {
+		const kept = cell.owners > 0 ? keptBack.get(cell.key) : undefined;
 		const own = ownReasons(cell, rules);
-		const kept = (["revision", "other_survey"] as const).flatMap((reason) => {
-			const rooms = cell.owners > 0 ? keptBack[reason]?.get(cell.key) : undefined;
-			return rooms ? [{ reason, rooms }] : [];
-		});
-		const reasons = [...own, ...kept.map(({ reason }) => reason)];
+		const reasons: OwnReason[] = kept ? [...own, "revision"] : own;
 		if (reasons.length === 0) return [];
 		const few = own.includes("too_few_owners");
 		const levels = Object.fromEntries(
 			table.quantities.map((q) => {
 				// What was a shield before has no room of its own to keep.
 				const needed = own.length > 0 ? level(table, wholes, index, q, few, rules) : 0;
-				const asked = Math.max(needed, ...kept.map(({ rooms }) => rooms[q.key] ?? 0));
+				const asked = Math.max(needed, kept?.[q.key] ?? 0);
 				return [q.key, q.counted && asked > 0 ? Math.max(1, asked) : asked] as const;
 			}),
 		);

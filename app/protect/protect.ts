@@ -1,11 +1,9 @@
 import { auditPattern, type AuditResult } from "./audit.ts";
-import { SurveysAuditor, type SurveysInput, withSurveys } from "./audit-surveys.ts";
 import { type BlockChoice, chooseBlock, type ChoiceOptions, joinChoices, type Plan, planChoice } from "./choice.ts";
 import { auditRevision, type RevisionInput, withRevision } from "./audit-revision.ts";
 import type { Holding } from "./holdings.ts";
 import { harden } from "./harden.ts";
 import { ownCells } from "./levels.ts";
-import { type CellsByQuantity, guardSurveys, withheldCells } from "./other-surveys.ts";
 import type { RevisionGuard } from "./revision.ts";
 import { checkRules, type CellStatus, type OwnReason, type ProtectionRules } from "./rules.ts";
 import { type Objective, sumOver } from "./loss.ts";
@@ -61,12 +59,15 @@ export interface ProtectOptions extends Partial<Omit<ChoiceOptions, "told">> {
 	guard?: Pick<RevisionGuard, "keptBack" | "told">;
 	/** These releases, and the answers behind the draft: what it would show is then audited beside them. */
 	revision?: Pick<RevisionInput, "areas" | "cropKeys" | "earlier"> & { holdings: readonly Holding[] };
-	/** Releases of other surveys of the season, and the draft as they are compared with it. */
-	surveys?: SurveysInput;
+	/**
+	 * By quantity, keys of cells whose value other surveys' releases show: see `sharedCells`. What these leave of a cell's
+	 * room may be less than its level, and then no choice passes.
+	 */
+	shownElsewhere?: ReadonlyMap<string, ReadonlySet<string>>;
 }
 
 /** What is to be decided, with the rules that its audit goes by. */
-export type ProtectionPlan = Plan & { rules: ProtectionRules } & Pick<ProtectOptions, "revision" | "surveys">;
+export type ProtectionPlan = Plan & { rules: ProtectionRules; revision: ProtectOptions["revision"] };
 
 /**
  * Decides for every cell of one survey whether it is shown, and audits the decision.
@@ -93,14 +94,10 @@ export function planProtection(
 	rules: ProtectionRules,
 	options: ProtectOptions,
 ): ProtectionPlan {
-	const { guard, surveys, revision, ...shielding } = options;
-	const season = surveys && guardSurveys(surveys);
-	const told = whatIsTold(table, rules, guard?.told, season);
-	// What an earlier release of the survey itself told is known, whatever another survey withheld.
-	const others = [...(season?.keptBack ?? [])].filter(([key]) => !guard?.told.has(key));
-	const keptBack = { revision: guard?.keptBack, other_survey: new Map(others) };
-	const own = ownCells(table, checkRules(rules), keptBack);
-	return { ...planChoice(table, own, { ...STRICT, ...shielding, told }), rules, revision, surveys };
+	const { guard, shownElsewhere, revision, ...shielding } = options;
+	const told = whatIsTold(table, rules, guard?.told, shownElsewhere);
+	const own = ownCells(table, checkRules(rules), guard?.keptBack);
+	return { ...planChoice(table, own, { ...STRICT, ...shielding, told }), rules, revision };
 }
 
 /** The last step: one pattern from the choices of all blocks, audited. */
@@ -110,33 +107,21 @@ export function concludeProtection(
 	choices: readonly (BlockChoice | null)[],
 	watch: (phase: "joining" | "auditing") => void = () => {},
 ): Protection {
-	const { table, own, options, rules, surveys } = plan;
-	const auditor = surveys && surveys.others.length > 0 ? new SurveysAuditor(solver, surveys) : null;
+	const { table, own, options, rules } = plan;
 	watch("joining");
 	const choice = joinChoices(solver, plan, choices);
 	const reasons = new Map(own.map((cell) => [cell.index, cell.reasons]));
 	watch("auditing");
 	// Where the chooser, which asks for a little more than the audit, finds nothing, own cells alone may do: so it is where a
 	// revision tells the same again. What does not do is hardened, up to withholding everything.
-	const { shields, audit: hardened } = harden(choice?.shields ?? new Set(), {
+	const { shields, audit } = harden(choice?.shields ?? new Set(), {
 		table,
 		rules,
 		own,
 		useless: toldCells(options.told),
-		elsewhere: withheldElsewhere(plan),
-		audit: (chosen) => {
-			const audit = auditPattern(solver, table, own, chosen, { ...options, rules });
-			return auditor ? withSurveys(audit, auditor.audit(shownCells(plan, chosen))) : audit;
-		},
+		audit: (chosen) => auditPattern(solver, table, own, chosen, { ...options, rules }),
 		more: (wishes, given) => chooseShields(solver, table, wishes, options, given),
 	});
-	// Once more without sparing anything that was kept on the way.
-	const audit = auditor
-		? withSurveys(
-				auditPattern(solver, table, own, shields, { ...options, rules }),
-				auditor.audit(shownCells(plan, shields), true),
-			)
-		: hardened;
 	const pattern = new Map(
 		table.cells.map((cell, index): [string, CellDecision] => {
 			if (cell.owners === 0) return [cell.key, { status: "no_growers", reasons: [] }];
@@ -151,18 +136,6 @@ export function concludeProtection(
 	return { pattern, audit: beside(solver, plan, audit, pattern), loss };
 }
 
-/** Cells with growers that some other survey of the season withholds. */
-function withheldElsewhere({ table, surveys }: ProtectionPlan): Set<number> {
-	const hidden = new Set((surveys?.others ?? []).flatMap((other) => [...withheldCells(other)]));
-	return new Set(table.cells.flatMap(({ key, owners }, index) => (owners > 0 && hidden.has(key) ? [index] : [])));
-}
-
-/** Keys of the cells that these shields leave to be shown. */
-function shownCells({ table, own }: ProtectionPlan, shields: ReadonlySet<number>): Set<string> {
-	const hidden = new Set([...own.map(({ index }) => index), ...shields]);
-	return new Set(table.cells.flatMap(({ key, owners }, index) => (owners > 0 && !hidden.has(index) ? [key] : [])));
-}
-
 /** The audit, with what the draft tells beside earlier releases. */
 function beside(solver: Solver, { table, rules, revision }: ProtectionPlan, audit: AuditResult, pattern: Pattern) {
 	if (!revision || revision.earlier.length === 0) return audit;
@@ -172,24 +145,16 @@ function beside(solver: Solver, { table, rules, revision }: ProtectionPlan, audi
 	return withRevision(audit, auditRevision(solver, { ...revision, quantities, rules, draft }));
 }
 
-/** What the guards name by key, by position. */
+/** What the guard and other releases name by key, by position. */
 function whatIsTold(
 	table: ProtectionTable,
 	rules: ProtectionRules,
 	earlier: ReadonlySet<string> = new Set(),
-	season: { told: CellsByQuantity; reckoned: CellsByQuantity } = { told: new Map(), reckoned: new Map() },
+	elsewhere: ProtectOptions["shownElsewhere"] = new Map(),
 ): Told {
-	const placed = (isOne: (quantity: string, key: string) => boolean) =>
-		new Map(
-			table.quantities.map(({ key: quantity }) => [
-				quantity,
-				new Set(table.cells.flatMap(({ key }, index) => (isOne(quantity, key) ? [index] : []))),
-			]),
-		);
-	const isTold = (quantity: string, key: string) => earlier.has(key) || (season.told.get(quantity)?.has(key) ?? false);
-	return {
-		cells: placed(isTold),
-		reckoned: placed((quantity, key) => !isTold(quantity, key) && (season.reckoned.get(quantity)?.has(key) ?? false)),
-		publicFactor: rules.publicFactor,
-	};
+	const cells = table.quantities.map(({ key }) => {
+		const told = (cell: { key: string }) => earlier.has(cell.key) || elsewhere.get(key)?.has(cell.key);
+		return [key, new Set(table.cells.flatMap((cell, index) => (told(cell) ? [index] : [])))] as const;
+	});
+	return { cells: new Map(cells), publicFactor: rules.publicFactor };
 }

@@ -5,10 +5,9 @@ export type CellStatus = "shown" | "withheld" | "no_growers";
 
 /**
  * Why a cell is withheld for its own sake. Only the desk sees it. `uniform`: everybody gave one answer to a sensitive
- * question; `revision`: showing it beside an earlier release would tell of too few; `other_survey`: another survey of the
- * season withheld it, or showing it beside that survey's figure would tell of too few.
+ * question; `revision`: showing it beside an earlier release would tell of too few.
  */
-export type OwnReason = "too_few_owners" | "dominated" | "uniform" | "revision" | "other_survey";
+export type OwnReason = "too_few_owners" | "dominated" | "uniform" | "revision";
 
 /** The network's settings; frozen with each release. */
 export interface ProtectionRules {
@@ -32,8 +31,7 @@ export const defaultRules: ProtectionRules = {
 	publicFactor: null,
 };
 
-/** Two owners can always work each other out. */
-export const LEAST_OWNERS = 3;
+const SMALLEST_MINIMUM = 3;
 
 /**
  * Settings as they may be used.
@@ -42,8 +40,8 @@ export const LEAST_OWNERS = 3;
  */
 export function checkRules(rules: ProtectionRules): ProtectionRules {
 	const { minimumOwners, dominancePercent, largest, publicFactor } = rules;
-	if (!Number.isInteger(minimumOwners) || minimumOwners < LEAST_OWNERS) {
-		throw new RangeError(`minimumOwners must be a whole number of at least ${LEAST_OWNERS}`);
+	if (!Number.isInteger(minimumOwners) || minimumOwners < SMALLEST_MINIMUM) {
+		throw new RangeError(`minimumOwners must be a whole number of at least ${SMALLEST_MINIMUM}`);
 	}
 	if (!(dominancePercent > 0 && dominancePercent <= 100)) {
 		throw new RangeError("dominancePercent must be above 0 and at most 100");

@@ -4,7 +4,7 @@ import type { OwnCell } from "./levels.ts";
 import { lossByCell, type Objective } from "./loss.ts";
 import type { Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
-import { isTold, type Told } from "./told.ts";
+import { isTold, type Told, toldCells } from "./told.ts";
 
 export interface ShieldOptions {
 	/** Whether single owners of cells are attackers who know those cells. */
@@ -51,8 +51,8 @@ export function chooseShields(
 	const kept = new Set([...own.map(({ index }) => index), ...given]);
 	const hidden = new Set(kept);
 	const grand = table.cells.findIndex((c) => c.coordinates.every((code, d) => code === table.hierarchies[d]!.root));
-	const locked = new Set(hidden.has(grand) ? [] : [grand]);
-	const augmenter = new Augmenter(solver, table, weights, hidden, locked, options.told);
+	const locked = new Set([...toldCells(options.told), ...(hidden.has(grand) ? [] : [grand])]);
+	const augmenter = new Augmenter(solver, table, weights, hidden, locked);
 	const find = footingFinder(table, augmenter, options);
 	const hide = (cells: readonly number[]) => {
 		for (const index of cells) if (!hidden.has(index)) augmenter.hide(index);

@@ -4,8 +4,6 @@ import type { ProtectionTable, Quantity } from "./table.ts";
 export interface Told {
 	/** By quantity key, positions of cells whose value other releases show: earlier ones, or other surveys of the season. */
 	cells?: ReadonlyMap<string, ReadonlySet<number>>;
-	/** Likewise, values that can be reckoned by who knows what a few owners told another survey: see `OtherSurvey`. */
-	reckoned?: ReadonlyMap<string, ReadonlySet<number>>;
 	/** f: an amount is seen to lie within [value / f, f x value], as a size class would tell. */
 	publicFactor?: number | null;
 }
@@ -40,23 +38,7 @@ export function publicBounds(table: ProtectionTable, told: Told | undefined) {
 	);
 }
 
-/** Cells that are told or reckoned in any quantity: withholding them hides little. */
+/** Cells that are told in any quantity: withholding them hides little, and moving them is seen. */
 export function toldCells(told: Told | undefined): Set<number> {
-	return new Set(
-		[told?.cells, told?.reckoned].flatMap((by) => [...(by?.values() ?? [])].flatMap((cells) => [...cells])),
-	);
-}
-
-/** What is known to who reckons with a few owners' answers to another survey; null where there is nothing to reckon. */
-export function toldToReckoner(told: Told | undefined): Told | null {
-	const { cells = new Map<string, ReadonlySet<number>>(), reckoned } = told ?? {};
-	if (!reckoned || ![...reckoned.values()].some(({ size }) => size > 0)) return null;
-	const keys = [...new Set([...cells.keys(), ...reckoned.keys()])];
-	const all = keys.map((key) => [key, new Set([...(cells.get(key) ?? []), ...(reckoned.get(key) ?? [])])] as const);
-	return { ...told, cells: new Map(all) };
-}
-
-/** Whether a cell's movement in this quantity is seen, or reckoned. */
-export function isSeen(told: Told | undefined, quantity: string, cell: number): boolean {
-	return (told?.cells?.get(quantity)?.has(cell) || told?.reckoned?.get(quantity)?.has(cell)) ?? false;
+	return new Set([...(told?.cells?.values() ?? [])].flatMap((cells) => [...cells]));
 }

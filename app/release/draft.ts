@@ -117,7 +117,7 @@ export const ReleaseAudit = z.object({
 	attackers: z
 		.array(
 			z.object({
-				kind: z.enum(["everybody", "owner", "line", "revision", "survey"]),
+				kind: z.enum(["everybody", "owner", "line", "revision"]),
 				tried: z.number().int(),
 				failed: z.number().int(),
 			}),
@@ -127,8 +127,6 @@ export const ReleaseAudit = z.object({
 	seconds: z.number(),
 	/** By how much more is lost at most than any safe choice must lose, as a share; 0 is proven least, null is not known. */
 	gap: z.number().nullable().default(null),
-	/** Releases of other surveys of the season that there were when it was made. */
-	heldAgainst: z.array(z.string()).default([]),
 	failures: z.array(z.object({ cellKey: z.string(), quantity: z.string().nullable(), kind: z.string() })),
 });
 export type ReleaseAudit = z.infer<typeof ReleaseAudit>;

@@ -4,16 +4,14 @@ import { isAsAudited, publishedChecksum } from "./checksums.server.ts";
 import { type DraftCell, ReleaseAudit, ReleaseMethod, ReleaseRules } from "./draft.ts";
 import { listDraftCells } from "./drafts.server.ts";
 import { keepForm } from "./kept-form.server.ts";
-import { isUpToDate } from "./season-releases.server.ts";
 import { publishedAudit, publishedMethod, publishedRows } from "./published-rows.ts";
 
 export type Published = { outcome: "published"; releaseId: string; number: number };
-export type NotPublished = { outcome: "not_found" | "not_waiting" | "not_yet" | "changed" | "outdated" };
+export type NotPublished = { outcome: "not_found" | "not_waiting" | "not_yet" | "changed" };
 
 /**
  * Publishes an approved draft whose minute has come as a numbered release, in the caller's transaction: all of it or nothing.
- * Only what may be shown is copied; a withheld cell becomes one word. The draft's cells must still be those that were audited,
- * and no other survey of the season may have been published since.
+ * Only what may be shown is copied; a withheld cell becomes one word. The draft's cells must still be those that were audited.
  */
 export async function publishRelease(
 	trx: Trx,
@@ -24,8 +22,6 @@ export async function publishRelease(
 	if (!draft) return { outcome: "not_found" };
 	if (draft.status !== "scheduled" || !draft.publish_at) return { outcome: "not_waiting" };
 	if (draft.publish_at > new Date()) return { outcome: "not_yet" };
-	const audit = ReleaseAudit.parse(draft.audit);
-	if (!(await isUpToDate(trx, draft.survey_id, audit.heldAgainst))) return { outcome: "outdated" };
 	const cells = await listDraftCells(trx, releaseDraftId);
 	const method = ReleaseMethod.parse(draft.method);
 	if (!isAsAudited(draft, method, cells)) return { outcome: "changed" };
@@ -34,7 +30,7 @@ export async function publishRelease(
 	const number = await insertRelease(trx, releaseId, {
 		draft,
 		method,
-		audit,
+		audit: ReleaseAudit.parse(draft.audit),
 		rules: ReleaseRules.parse(draft.rules),
 		cells,
 		codeVersion,

@@ -61,12 +61,6 @@ function calibrationInAll(calibrations: ReleaseMethod["calibrations"]) {
 }
 
 /** The audit without what names cells, and without how many are withheld for which reason, which is for the desk alone. */
-export function publishedAudit({
-	failures: _f,
-	withheldForOwnSake: _w,
-	shields: _s,
-	heldAgainst: _h,
-	...audit
-}: ReleaseAudit) {
+export function publishedAudit({ failures: _f, withheldForOwnSake: _w, shields: _s, ...audit }: ReleaseAudit) {
 	return audit;
 }

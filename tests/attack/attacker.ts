@@ -18,13 +18,13 @@ export interface Seen {
 const add = (list: readonly number[]) => list.reduce((a, b) => a + b, 0);
 const partsOf = (cells: Cells, key: string, quantity: Amount) =>
 	[...(cells.get(key)?.values() ?? [])].map((part) => part[quantity]).toSorted((a, b) => b - a);
-export const valueOf = (cells: Cells, key: string, quantity: Amount) => add(partsOf(cells, key, quantity));
+const valueOf = (cells: Cells, key: string, quantity: Amount) => add(partsOf(cells, key, quantity));
 const leafKeys = counties.flatMap((county) => crops.map((crop) => `${county}|${crop}`));
 const areas = ["network", "d1", "d2", ...counties];
-export const allKeys = areas.flatMap((area) => [...crops, "all"].map((crop) => `${area}|${crop}`));
+const allKeys = areas.flatMap((area) => [...crops, "all"].map((crop) => `${area}|${crop}`));
 
 /** The smallest cells that a cell is the sum of. */
-export function leavesOf(key: string): string[] {
+function leavesOf(key: string): string[] {
 	const [area, crop] = key.split("|") as [string, string];
 	return leafKeys.filter((leaf) => {
 		const [county, what] = leaf.split("|") as [string, string];
@@ -56,7 +56,7 @@ interface Aim {
 }
 
 /** Rows of a program and what they are about, for somebody who may know more. */
-export class Attack {
+class Attack {
 	attacks = 0;
 
 	constructor(
@@ -88,9 +88,9 @@ export class Attack {
 }
 
 /** What a smallest cell of a release is called in a program. */
-export const nameIn = (edition: number) => (leaf: string) => `x${edition}_${leaf.replace("|", "_")}`;
-export const sumOf = (names: readonly string[]) => names.join(" + ");
-export const round = (value: number) => Number(value.toPrecision(15));
+const nameIn = (edition: number) => (leaf: string) => `x${edition}_${leaf.replace("|", "_")}`;
+const sumOf = (names: readonly string[]) => names.join(" + ");
+const round = (value: number) => Number(value.toPrecision(15));
 
 export function attackTable(
 	highs: Highs,
@@ -126,7 +126,7 @@ export function attackTable(
 	return { broken, attacks };
 }
 
-export function cellAims(
+function cellAims(
 	cells: Cells,
 	shown: ReadonlySet<string>,
 	quantity: Amount,

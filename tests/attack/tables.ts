@@ -1,6 +1,5 @@
 import { REGION } from "#app/protect/codes.ts";
 import type { Holding } from "#app/protect/holdings.ts";
-import type { OtherSurvey } from "#app/protect/other-surveys.ts";
 import type { ProtectionRules } from "#app/protect/rules.ts";
 import { surveyTable } from "#app/protect/survey-table.ts";
 import { type Amount, amounts, counties, countCells, crops, districtOf, type Farm } from "./farms.ts";
@@ -51,13 +50,6 @@ function shareOf(parts: readonly number[], rules: ProtectionRules) {
 
 function sum(list: readonly number[]): number {
 	return list.reduce((a, b) => a + b, 0);
-}
-
-/** A released survey that asked these farms for their trees, as another one is held against it. */
-export function otherSurvey(farms: readonly Farm[], shown: ReadonlySet<string>, rules: ProtectionRules): OtherSurvey {
-	const quantities = ["trees"];
-	const holdings = holdingsOf(farms, ["trees"]);
-	return { name: "7", shown, holdings, areas: areaList, cropKeys: crops, quantities, shared: quantities, rules };
 }
 
 export function holdingsOf(farms: readonly Farm[], quantities: readonly Amount[]): Holding[] {

@@ -29,7 +29,7 @@ type ReportRow = {
 	name: string;
 	parent: string;
 	status: "shown" | "withheld" | "no_growers";
-	reason: "own" | "shield" | "revision" | "other_survey" | "nobody_answered" | null;
+	reason: "own" | "shield" | "revision" | "nobody_answered" | null;
 	respondents: number | null;
 	figures: ReportFigure[];
 };
