@@ -40,6 +40,7 @@ export async function findPlace(trx: Trx, viewer: Grower, { surveyId, operationI
 			sql<boolean>`least(s.closed_at, s.closes_at) > clock_timestamp() - make_interval(days => ${lateDays})`.as(
 				"isRecent",
 			),
+			sql<boolean>`s.rehearsal_of is not null`.as("isRehearsal"),
 			"o.name as operationName",
 			"o.mass_unit",
 			"o.language",

@@ -35,6 +35,8 @@ export type Answering = {
 	isOpen: boolean;
 	/** Whether it closed after it was begun, and not long ago: what is sent in now is kept as late. */
 	isLate: boolean;
+	/** Whether the survey is only tried out, and the operation invented. */
+	isRehearsal: boolean;
 	massUnit: MassUnit;
 	/** Pounds that the operation's crate holds, by crop, as it last told, in this survey or an earlier one. */
 	crates: Record<string, number>;

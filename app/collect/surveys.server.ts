@@ -30,6 +30,12 @@ export async function findSurvey(trx: Trx, viewer: Associate, surveyId: string) 
 	return row && toSurvey(row, viewer);
 }
 
+/** As `findSurvey`, for what a rehearsal has none of: mails, a brief of its own, releases. */
+export async function findRealSurvey(trx: Trx, viewer: Associate, surveyId: string) {
+	const survey = await findSurvey(trx, viewer, surveyId);
+	return survey?.rehearsalOf ? undefined : survey;
+}
+
 /** Addresses can be typed by anyone; what is no id is simply not found. */
 export function isId(text: string | undefined): text is string {
 	return z.guid().safeParse(text).success;

@@ -15,7 +15,7 @@ import {
 } from "#app/collect/rehearsal.server.ts";
 import { listBarSurveys } from "#app/collect/season-bar.server.ts";
 import { closeSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
-import { createSurvey, findSurvey, listSurveys } from "#app/collect/surveys.server.ts";
+import { createSurvey, findRealSurvey, findSurvey, listSurveys } from "#app/collect/surveys.server.ts";
 import { listFileRows } from "#app/directory/grower-file.server.ts";
 import { listLikelyPairs } from "#app/directory/merging/duplicates.server.ts";
 import { findOperation } from "#app/directory/operations.server.ts";
@@ -151,6 +151,9 @@ test("a rehearsal is seen by who has it in hand, with its answers, and its growe
 		inFrame: 6,
 		answered: 6,
 	});
+	// Pages that mail, plan and release find the survey and not its rehearsal.
+	expect(await inHand(iowa, rehearsalId, (trx) => findRealSurvey(trx, iowa, rehearsalId))).toBeUndefined();
+	expect(await inHand(iowa, draft, (trx) => findRealSurvey(trx, iowa, draft))).toMatchObject({ surveyId: draft });
 	const [first] = await testGrowers(iowa, rehearsalId);
 	const page = (trx: Trx) => findOperation(trx, iowa, first!.operationId);
 	expect(await inHand(iowa, rehearsalId, page)).toBeUndefined();

@@ -7,7 +7,7 @@ import { sessionContext } from "#app/auth/session.server.ts";
 import { BriefForm, plannedRows } from "#app/collect/brief.schema.ts";
 import { findBrief, saveBrief } from "#app/collect/brief.server.ts";
 import { findSurveyForm } from "#app/collect/forms.server.ts";
-import { findSurvey } from "#app/collect/surveys.server.ts";
+import { findRealSurvey } from "#app/collect/surveys.server.ts";
 import { Button } from "#app/components/button.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
@@ -25,7 +25,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
 	const found = await desk.transaction(async (trx) => {
 		const brief = await findBrief(trx, desk.viewer, params.surveyId);
-		const survey = await findSurvey(trx, desk.viewer, params.surveyId);
+		const survey = await findRealSurvey(trx, desk.viewer, params.surveyId);
 		if (!brief || !survey) return undefined;
 		const measures = await listMeasures(trx, params.surveyId);
 		const held = brief.planned.length > 0 ? await readPlanKept(trx, params.surveyId, brief.planned) : null;
@@ -48,7 +48,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const { planned, ...brief } = form.value;
 	const rows = planned.filter(({ measureKey }) => measureKey !== "");
 	const outcome = await desk.transaction(async (trx) => {
-		if (!(await findSurvey(trx, desk.viewer, params.surveyId))) return "not_found";
+		if (!(await findRealSurvey(trx, desk.viewer, params.surveyId))) return "not_found";
 		const known = new Set((await listMeasures(trx, params.surveyId)).map(({ key }) => key));
 		const unknown = planned.findIndex(({ measureKey }) => measureKey !== "" && !known.has(measureKey));
 		if (unknown >= 0) return { field: `planned[${unknown}].measureKey`, code: "choice_wrong" };

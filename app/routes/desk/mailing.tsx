@@ -7,7 +7,7 @@ import { countMailsByKind } from "#app/collect/mail-counts.server.ts";
 import { ReminderForm } from "#app/collect/reminder.schema.ts";
 import { listReminders, setReminders } from "#app/collect/reminders.server.ts";
 import { wallClockOf } from "#app/collect/survey-closing.ts";
-import { findSurvey } from "#app/collect/surveys.server.ts";
+import { findRealSurvey } from "#app/collect/surveys.server.ts";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
@@ -21,7 +21,7 @@ import { reminderLabels, ReminderTimes } from "./parts/reminder-times.tsx";
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
 	const found = await desk.transaction(async (trx) => {
-		const survey = await findSurvey(trx, desk.viewer, params.surveyId);
+		const survey = await findRealSurvey(trx, desk.viewer, params.surveyId);
 		return (
 			survey && {
 				survey,
@@ -46,7 +46,10 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const form = parseForm(ReminderForm, await request.formData());
 	if (!form.ok) return data({ refused: null, values: form.values, problems: form.problems }, { status: 400 });
 
-	const outcome = await desk.transaction((trx) => setReminders(trx, desk.viewer, params.surveyId, form.value));
+	const outcome = await desk.transaction(async (trx) => {
+		if (!(await findRealSurvey(trx, desk.viewer, params.surveyId))) return "not_found" as const;
+		return setReminders(trx, desk.viewer, params.surveyId, form.value);
+	});
 	if (outcome === "not_found") throw refusal("survey_not_found");
 	const { values } = form;
 	if (typeof outcome === "object") return data({ refused: null, values, problems: outcome.problems }, { status: 400 });

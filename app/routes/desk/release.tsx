@@ -8,7 +8,7 @@ import { requireAssociate } from "#app/auth/guard.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { findSurvey } from "#app/collect/surveys.server.ts";
+import { findRealSurvey } from "#app/collect/surveys.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
 import { Confirm } from "#app/components/confirm.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
@@ -36,7 +36,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
 	const choice = DraftChoice.parse(Object.fromEntries(new URL(request.url).searchParams));
 	const found = await desk.transaction(async (trx) => {
-		const survey = await findSurvey(trx, desk.viewer, params.surveyId);
+		const survey = await findRealSurvey(trx, desk.viewer, params.surveyId);
 		if (!survey) return undefined;
 		const draft = await findLatestDraft(trx, desk.viewer, params.surveyId);
 		const withdrawn = draft?.releaseId ? await findWithdrawal(trx, draft.releaseId) : null;
@@ -67,7 +67,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	}
 	const reason = value.step === "revise" ? { en: value.reasonEn, es: value.reasonEs } : null;
 	const result = await desk.transaction(async (trx) => {
-		if (!(await findSurvey(trx, desk.viewer, params.surveyId))) return { outcome: "not_found" } as const;
+		if (!(await findRealSurvey(trx, desk.viewer, params.surveyId))) return { outcome: "not_found" } as const;
 		const made = await createDraft(trx, desk.viewer, params.surveyId, await readNetworkRules(trx), reason);
 		if (made.outcome !== "drafted") return made;
 		const { releaseDraftId } = made;
@@ -85,7 +85,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 
 /** Stopping twice, or what has ended meanwhile, changes nothing. */
 async function stopDraft(trx: Trx, viewer: Associate, surveyId: string) {
-	if (!(await findSurvey(trx, viewer, surveyId))) return "not_found";
+	if (!(await findRealSurvey(trx, viewer, surveyId))) return "not_found";
 	const stopped = await cancelDraft(trx, viewer, surveyId);
 	if (stopped.outcome === "cancelled") {
 		const subject = { subjectKind: "release_draft", subjectId: stopped.releaseDraftId, detail: { surveyId } };

@@ -13,6 +13,7 @@ import { getAnswering } from "./parts/answering.server.ts";
 import { photoAddress } from "./parts/photo-address.ts";
 import { PhonePart } from "./parts/phone-part.tsx";
 import { phonePart } from "./parts/phone.server.ts";
+import { RehearsalNotice } from "./parts/rehearsal-notice.tsx";
 
 export const handle = { bare: true };
 
@@ -28,6 +29,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		submittedAt,
 		isLate: response.lateAt !== null,
 		isOpen: answering.isOpen,
+		isRehearsal: answering.isRehearsal,
 		changed: response.changedSinceSubmission,
 		operationName: answering.operationName,
 		closesAt: answering.closesAt,
@@ -44,6 +46,7 @@ export default function Receipt({ loaderData, params }: Route.ComponentProps) {
 	const closes = format.moment(closesAt, timeZone);
 	return (
 		<Page title={t("receipt.title")} lead={t("receipt.lead", { operation: operationName })}>
+			{loaderData.isRehearsal && <RehearsalNotice />}
 			{isLate && (
 				<Notice tone="attention" title={t("late.title")}>
 					{t("late.kept")}

@@ -23,6 +23,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		steps: steps.map(({ key, screen, planting }) => ({ key, screen: { title: screen.title }, planting })),
 		closesAt: answering.closesAt,
 		isLate: answering.isLate,
+		isRehearsal: answering.isRehearsal,
 		timeZone: answering.timeZone,
 		sent: response.receiptCode !== null,
 		changed: response.changedSinceSubmission,

@@ -19,6 +19,7 @@ import { getAnswering } from "./parts/answering.server.ts";
 import { LateNotice } from "./parts/late-notice.tsx";
 import { PhonePart } from "./parts/phone-part.tsx";
 import { phonePart } from "./parts/phone.server.ts";
+import { RehearsalNotice } from "./parts/rehearsal-notice.tsx";
 
 export const handle = { bare: true };
 
@@ -32,6 +33,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		operationName: answering.operationName,
 		closesAt: answering.closesAt,
 		isLate: answering.isLate,
+		isRehearsal: answering.isRehearsal,
 		timeZone: answering.timeZone,
 		minutes: definition.minutes,
 		steps: listSteps(definition, plantings, answers).length,
@@ -65,6 +67,7 @@ export default function Start({ loaderData, params }: Route.ComponentProps) {
 	const values = { survey: wordsIn(title, i18n.language), season, operation: operationName };
 	return (
 		<Page title={t("start.title", values)} lead={t("start.lead", values)}>
+			{loaderData.isRehearsal && <RehearsalNotice />}
 			{isLate && <LateNotice />}
 			{receiptCode && !isLate && (
 				<Notice tone="info" title={t("start.sentTitle")}>

@@ -10,6 +10,7 @@ import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { LateNotice } from "./late-notice.tsx";
+import { RehearsalNotice } from "./rehearsal-notice.tsx";
 import { KeptWord, PhonePart, type PhonePage } from "./phone-part.tsx";
 import { photoAddress } from "./photo-address.ts";
 import { useStepTitle } from "#app/components/step-title.ts";
@@ -21,6 +22,7 @@ type ReviewViewProps = {
 	closesAt: Date;
 	timeZone: string;
 	isLate?: boolean;
+	isRehearsal?: boolean;
 	/** Whether answers were sent in before, and whether something has changed since. */
 	sent: boolean;
 	changed: boolean;
@@ -41,6 +43,7 @@ export function ReviewView({ groups, steps, refused, place, phone, ...rest }: Re
 		`${href("/answer/:surveyId/:operationId/ask/:screen", { ...place, screen })}?review`;
 	return (
 		<Page title={t("review.title")} lead={t("review.lead")}>
+			{rest.isRehearsal && <RehearsalNotice />}
 			{isLate && <LateNotice />}
 			{refused && <Unfinished steps={steps} {...refused} addressOf={askAddress} />}
 			{sent && !changed && <Notice tone="info">{t("review.alreadySent")}</Notice>}
