@@ -17,6 +17,27 @@ function localeOf(language: string): "en-US" | "es-US" {
 	return language === "es" ? "es-US" : "en-US";
 }
 
+/** Kept by name, so that each is made once: a page tells of thousands of figures, and making one takes longer than many uses. */
+const made = new Map<string, unknown>();
+function kept<Maker>(name: string, make: () => Maker): Maker {
+	const before = made.get(name) as Maker | undefined;
+	if (before !== undefined) return before;
+	// Options stand in the code and are few; of time zones, which people choose, there are hundreds.
+	if (made.size >= 200) made.clear();
+	const now = make();
+	made.set(name, now);
+	return now;
+}
+const nameOf = (kind: string, locale: string, options: object) => `${kind} ${locale} ${JSON.stringify(options)}`;
+
+const numberFormat = (locale: string, options: Intl.NumberFormatOptions) =>
+	kept(nameOf("number", locale, options), () => new Intl.NumberFormat(locale, options));
+const dateFormat = (locale: string, options: Intl.DateTimeFormatOptions) =>
+	kept(nameOf("date", locale, options), () => new Intl.DateTimeFormat(locale, options));
+const listFormat = (locale: string) =>
+	kept(`list ${locale}`, () => new Intl.ListFormat(locale, { type: "conjunction" }));
+const collator = (locale: string) => kept(`collator ${locale}`, () => new Intl.Collator(locale, { numeric: true }));
+
 /**
  * The one formatter of numbers, units and dates, in the reader's language. Units come from the shared words
  * (`common:unit.<unit>`, with `{{value}}` inside), since Intl knows no bushel.
@@ -24,9 +45,9 @@ function localeOf(language: string): "en-US" | "es-US" {
 export function formatterFor(language: string, t: TFunction) {
 	const locale = localeOf(language);
 	const number = (value: number, decimals = 0) =>
-		new Intl.NumberFormat(locale, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
+		numberFormat(locale, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
 	const date = (value: Date | string, options: Intl.DateTimeFormatOptions) =>
-		new Intl.DateTimeFormat(locale, options).format(typeof value === "string" ? new Date(value) : value);
+		dateFormat(locale, options).format(typeof value === "string" ? new Date(value) : value);
 	const quantity = (value: number, unit: Unit, decimals = 0) =>
 		t(`common:unit.${unit}`, { value: number(value, decimals), count: value });
 	/** "April 24", never broken over two lines; a day that the year does not have stays a number. */
@@ -87,10 +108,10 @@ export function formatterFor(language: string, t: TFunction) {
 			const unit = bytes < 1e6 ? "kilobyte" : "megabyte";
 			const size = bytes / (bytes < 1e6 ? 1e3 : 1e6);
 			const maximumFractionDigits = size < 10 ? 1 : 0;
-			return new Intl.NumberFormat(locale, { style: "unit", unit, maximumFractionDigits }).format(size);
+			return numberFormat(locale, { style: "unit", unit, maximumFractionDigits }).format(size);
 		},
-		list: (items: string[]) => new Intl.ListFormat(locale, { type: "conjunction" }).format(items),
-		compare: new Intl.Collator(locale, { numeric: true }).compare,
+		list: (items: string[]) => listFormat(locale).format(items),
+		compare: collator(locale).compare,
 	};
 }
 export type Formatter = ReturnType<typeof formatterFor>;

@@ -24,6 +24,8 @@ export const MapQuery = z.object({
 	q: z.string().trim().max(200).catch(""),
 	sort: z.enum(["area", "value", "earlier", "change"]).catch("area"),
 	direction: z.enum(["asc", "desc"]).catch("asc"),
+	/** Of the table; the map shows all. */
+	page: z.coerce.number().int().min(1).max(100_000).catch(1),
 });
 export type MapQuery = z.infer<typeof MapQuery>;
 

@@ -12,6 +12,7 @@ import { i18nextSettings } from "#app/i18n/settings.ts";
 import { countyFeatures } from "#app/lib/geography/counties.ts";
 import { usTopology } from "#app/lib/geography/topology.server.ts";
 import { formatterFor } from "#app/lib/format.ts";
+import { pageOf } from "#app/lib/page-of.ts";
 import type { MapCell } from "#app/publish/cell.ts";
 import { dataColumns } from "#app/publish/data-file.ts";
 import { readMapQuery } from "#app/publish/map-choice.ts";
@@ -86,7 +87,12 @@ const numbers = (rows: MapCell[]) => rows.flatMap(({ look, value }) => (look ===
 async function tableOf(rows: MapCell[], measure: never): Promise<Map<string, string>> {
 	const words = createInstance();
 	await words.init({ ...i18nextSettings, resources, lng: "en" });
-	const map = { rows, measure, kind: "county", query: readMapQuery("https://survey.example/map") };
+	const map = {
+		table: pageOf(rows, 1, rows.length),
+		measure,
+		kind: "county",
+		query: readMapQuery("https://survey.example/map"),
+	};
 	const table = createElement(MapTable, { map, title: "t", onPoint: nothing, onChoose: nothing });
 	const page = createRoutesStub([{ path: "/", Component: () => table }]);
 	const markup = renderToStaticMarkup(createElement(I18nextProvider, { i18n: words }, createElement(page)));

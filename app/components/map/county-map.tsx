@@ -59,18 +59,14 @@ export function CountyMap(props: CountyMapProps) {
 		if (state === "ready") live?.mark(marked);
 	}, [live, state, marked]);
 
-	const sentence = (areaKey: string) =>
-		words(
-			nameOf(areaKey),
-			drawn.cells.find((cell) => cell.areaKey === areaKey),
-		);
 	const { cells } = drawn;
 	const sentences = useMemo(
-		() => Object.fromEntries(cells.map((cell) => [cell.areaKey, sentence(cell.areaKey)])),
+		() => Object.fromEntries(cells.map((cell) => [cell.areaKey, words(nameOf(cell.areaKey), cell)])),
 		// The words change with the figures and with nothing else on this page.
 		// oxlint-disable-next-line react-hooks/exhaustive-deps
 		[cells],
 	);
+	const sentence = (areaKey: string) => sentences[areaKey] ?? words(nameOf(areaKey), undefined);
 	const onKeyDown = (event: KeyboardEvent) => {
 		const step = mapKey(event.key);
 		if (!step || !live || event.ctrlKey || event.metaKey || event.altKey) return;

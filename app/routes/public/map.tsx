@@ -13,6 +13,7 @@ import { wordsIn } from "#app/i18n/language.ts";
 import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { formatterFor } from "#app/lib/format.ts";
+import { pageOf } from "#app/lib/page-of.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { countiesAddress } from "#app/publish/geometry.server.ts";
 import { inState, type MapQuery, readMapQuery } from "#app/publish/map-choice.ts";
@@ -29,6 +30,9 @@ import { ReleaseNotice } from "#app/components/release/release-state.tsx";
 import { useChosenArea } from "./parts/use-chosen-area.ts";
 import { useViewTitle } from "./parts/use-view-title.ts";
 
+/** Of the table: a network's counties are on one page, and of all the country's a page is still soon made. */
+const pageSize = 500;
+
 export async function loader({ request, context }: Route.LoaderArgs) {
 	const query = readMapQuery(request.url);
 	const view = await findMapView(query);
@@ -42,6 +46,7 @@ export async function loader({ request, context }: Route.LoaderArgs) {
 	if (!picture || !outlines) return { map: null };
 	const { compare } = formatterFor(getLanguage(context), getT(context, "common"));
 	const pair = pairTable(view, query, compare);
+	const rows = pair ? [] : tableRows(inState(figures.cells, state), oneMapOrder(query), compare);
 	return {
 		map: {
 			...figures,
@@ -58,7 +63,7 @@ export async function loader({ request, context }: Route.LoaderArgs) {
 			wholes: await listWholeFigures(view),
 			picture,
 			outlines,
-			rows: pair ? [] : tableRows(inState(figures.cells, state), oneMapOrder(query), compare),
+			table: pageOf(rows, query.page, pageSize),
 		},
 	};
 }
@@ -74,7 +79,8 @@ function pairTable(view: MapView, query: MapQuery, compare: (a: string, b: strin
 	const all = pairRows(earlier.cells, later.cells, later.measure.decimals);
 	const rows = namedLike(inState(all, view.state), query.q);
 	const order = { key: query.sort, direction: query.direction };
-	return { earlier, later, rows: orderSeasonRows(rows, order, compare), differences: differencesOf(earlier, later) };
+	const table = pageOf(orderSeasonRows(rows, order, compare), query.page, pageSize);
+	return { earlier, later, table, differences: differencesOf(earlier, later) };
 }
 
 function withoutArea(url: URL): string {

@@ -3,8 +3,10 @@ import { useTranslation } from "react-i18next";
 import { Link, useSearchParams } from "react-router";
 import { type Column, DataTable } from "#app/components/data-table.tsx";
 import { useAreaName } from "#app/components/map/area-name.ts";
+import { Paging } from "#app/components/paging.tsx";
 import { SearchBar } from "#app/components/search-bar.tsx";
 import { Section } from "#app/components/section.tsx";
+import type { PageOf } from "#app/lib/page-of.ts";
 import type { Cell } from "#app/publish/cell.ts";
 import type { MapQuery } from "#app/publish/map-choice.ts";
 
@@ -13,7 +15,7 @@ type AreaTableProps<Row extends Area> = {
 	kind: string;
 	query: MapQuery;
 	title: string;
-	rows: Row[];
+	table: PageOf<Row>;
 	/** Those after the area's own. */
 	columns: Column<Row>[];
 	note?: string;
@@ -26,7 +28,7 @@ export function AreaTable<Row extends Area>({
 	kind,
 	query,
 	title,
-	rows,
+	table,
 	columns,
 	note,
 	...marks
@@ -34,7 +36,7 @@ export function AreaTable<Row extends Area>({
 	const { t } = useTranslation("public");
 	const areaColumn = useAreaColumn<Row>(kind, marks.onChoose);
 	const [search] = useSearchParams();
-	const kept = [...search].filter(([key]) => key !== "q");
+	const kept = [...search].filter(([key]) => key !== "q" && key !== "page");
 	const point = (event: FocusEvent | MouseEvent) => {
 		const row = (event.target as HTMLElement).closest("tr");
 		marks.onPoint(row?.querySelector<HTMLElement>("[data-area]")?.dataset.area ?? null);
@@ -57,12 +59,13 @@ export function AreaTable<Row extends Area>({
 				<DataTable
 					caption={title}
 					columns={[areaColumn, ...columns]}
-					rows={rows}
+					rows={table.rows}
 					rowKey={(row) => row.areaKey}
 					sort={{ key: query.sort, direction: query.direction }}
 					empty={<p className="text-quiet">{t("map.table.none", { q: query.q })}</p>}
 				/>
 			</div>
+			{table.total > 0 && <Paging {...table} part="table" />}
 			{note && <p className="mt-3 max-w-prose text-sm text-quiet">{note}</p>}
 		</Section>
 	);

@@ -23,7 +23,7 @@ export function PairTable({ pair, ...shown }: PairTableProps) {
 	const { t } = useTranslation("public");
 	const columns = usePairColumns(pair);
 	return (
-		<AreaTable kind={pair.later.kind} rows={pair.rows} columns={columns} note={t("map.two.changeNote")} {...shown} />
+		<AreaTable kind={pair.later.kind} table={pair.table} columns={columns} note={t("map.two.changeNote")} {...shown} />
 	);
 }
 

@@ -10,6 +10,7 @@ import { Notice } from "#app/components/notice.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { daysInYear } from "#app/lib/day-of-year.ts";
+import type { PageOf } from "#app/lib/page-of.ts";
 import type { MapFigures } from "#app/publish/figures.server.ts";
 import type { SeasonDifference, SeasonRow } from "#app/publish/season-pair.ts";
 import type { MapQuery } from "#app/publish/map-choice.ts";
@@ -19,7 +20,7 @@ import { PairTable } from "./map-pair-table.tsx";
 export type Pair = {
 	earlier: MapFigures;
 	later: MapFigures;
-	rows: SeasonRow[];
+	table: PageOf<SeasonRow>;
 	differences: SeasonDifference[];
 };
 type Shown = { picture: DrawnPicture; outlines: string; query: MapQuery; state: string | null };
@@ -119,11 +120,11 @@ function SeasonMap({ figures, other, shown, chosen, onChoose, pointed, onPoint, 
 		measure: measure.key,
 		crop: cropKey,
 	});
+	const byArea = new Map([...other.cells, ...cells].map((cell) => [cell.areaKey, cell]));
 	const nameOf = (areaKey: string) => {
-		const cell = [...cells, ...other.cells].find((of) => of.areaKey === areaKey);
+		const cell = byArea.get(areaKey);
 		return t("map.two.area", { name: cell ? areaName(cell) : t("area.unnamed"), season: release.season });
 	};
-	const known = [...cells, ...other.cells].some(({ areaKey }) => areaKey === chosen);
 	return (
 		<section aria-label={title}>
 			<h2 className="mb-2 text-lg font-bold">{season}</h2>
@@ -134,7 +135,7 @@ function SeasonMap({ figures, other, shown, chosen, onChoose, pointed, onPoint, 
 				label={t("map.alternative", { title })}
 				countiesAddress={shown.outlines}
 				figuresAddress={`${address}?kind=${kind}&beside=${other.release.number}&classes=${way}`}
-				chosen={known ? chosen : null}
+				chosen={chosen && byArea.has(chosen) ? chosen : null}
 			/>
 		</section>
 	);

@@ -3,22 +3,23 @@ import { useTranslation } from "react-i18next";
 import type { Column } from "#app/components/data-table.tsx";
 import { Figure } from "#app/components/figure.tsx";
 import { bandText } from "#app/components/map/cell-words.ts";
+import type { PageOf } from "#app/lib/page-of.ts";
 import type { MapCell } from "#app/publish/cell.ts";
 import type { MapQuery } from "#app/publish/map-choice.ts";
 import type { ReleaseMeasure } from "#app/publish/release.ts";
 import { AreaTable } from "./map-area-table.tsx";
 
 type MapTableProps = {
-	map: { rows: MapCell[]; measure: ReleaseMeasure; kind: string; query: MapQuery };
+	map: { table: PageOf<MapCell>; measure: ReleaseMeasure; kind: string; query: MapQuery };
 	title: string;
 	onPoint: (areaKey: string | null) => void;
 	onChoose: (areaKey: string) => void;
 };
 
 /** The map's figures as a table. */
-export const MapTable = memo(function MapTable({ map: { rows, measure, kind, query }, ...shown }: MapTableProps) {
+export const MapTable = memo(function MapTable({ map: { table, measure, kind, query }, ...shown }: MapTableProps) {
 	const columns = useColumns(measure);
-	return <AreaTable {...{ rows, kind, query, columns }} {...shown} />;
+	return <AreaTable {...{ table, kind, query, columns }} {...shown} />;
 });
 
 function useColumns(measure: ReleaseMeasure): Column<MapCell>[] {

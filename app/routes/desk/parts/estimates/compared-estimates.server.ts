@@ -1,10 +1,10 @@
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { estimateByWeights } from "#app/jobs/weighed-estimates.server.ts";
+import { pageOf } from "#app/lib/page-of.ts";
 import { findLatestDraft, listDraftCells } from "#app/release/drafts.server.ts";
 import { compareFigures, type ComparedRow } from "./compared-rows.ts";
 import { measuresOf, readDraftInputs } from "./draft-estimates.server.ts";
-import { pageOf } from "./estimate-rows.ts";
 import type { ComparedQuery } from "./estimates.schema.ts";
 
 /**

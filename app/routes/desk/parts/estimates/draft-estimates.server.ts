@@ -7,8 +7,9 @@ import { type Area, listAreas, regionKey } from "#app/directory/areas.server.ts"
 import type { AreasOfCounty } from "#app/estimate/survey.ts";
 import { estimateByWeights } from "#app/jobs/weighed-estimates.server.ts";
 import { groupBy } from "#app/lib/group-by.ts";
+import { pageOf } from "#app/lib/page-of.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
-import { barScales, chooseRows, pageOf, sortRows } from "./estimate-rows.ts";
+import { barScales, chooseRows, sortRows } from "./estimate-rows.ts";
 import { type EstimatesQuery, figureSorts } from "./estimates.schema.ts";
 
 /**

@@ -91,10 +91,3 @@ export function daysScale(figures: readonly Pick<Figure, "value" | "lower" | "up
 		.filter((day) => typeof day === "number");
 	return days.length === 0 ? { lowest: 1, highest: 366 } : { lowest: Math.min(...days), highest: Math.max(...days) };
 }
-
-/** One page of a list that was made whole. */
-export function pageOf<T>(rows: readonly T[], page: number, size = 50) {
-	const pageCount = Math.max(1, Math.ceil(rows.length / size));
-	const shown = Math.min(page, pageCount);
-	return { rows: rows.slice((shown - 1) * size, shown * size), total: rows.length, page: shown, pageCount };
-}

@@ -2,8 +2,8 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { hasDraftedRelease } from "#app/collect/survey-opening.server.ts";
 import { estimateByWeights } from "#app/jobs/weighed-estimates.server.ts";
+import { pageOf } from "#app/lib/page-of.ts";
 import { measuresOf, readDraftInputs } from "./draft-estimates.server.ts";
-import { pageOf } from "./estimate-rows.ts";
 import type { WeightingQuery } from "./estimates.schema.ts";
 import { compareWeights, sortReweighted } from "./reweighted-rows.ts";
 
