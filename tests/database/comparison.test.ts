@@ -115,7 +115,7 @@ test("the thank-you says in one sentence how the grower's crop went around them,
 	expect(await say("en")).toBe(
 		"Around you, in East Iowa, growers lost 52% of a normal crop of apples, likely between 44 and 60%.",
 	);
-	expect(await say("es")).toContain("se perdió el 52% de una cosecha normal de la manzana");
+	expect(await say("es")).toContain("se perdió el 52% de una cosecha normal de manzana");
 	expect(await say("en", { county_fips: "19103" })).toContain("in Johnson County, Iowa, growers lost 38%");
 	expect(await say("en", { county_fips: "55025" })).toBeNull();
 });
