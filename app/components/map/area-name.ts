@@ -1,12 +1,14 @@
 import { useTranslation } from "react-i18next";
+import { onceEach, sentencePattern } from "#app/i18n/sentence-pattern.ts";
 
 type Area = { areaName: string; kind?: string; stateFips?: string | null };
 
 /** An area's name where it stands alone: counties of one name lie in several states, so "Story County, Iowa". */
 export function useAreaName() {
 	const { t } = useTranslation();
+	const countyOf = onceEach((stateFips: string) =>
+		sentencePattern(["name"], ({ name }) => t("public:area.county", { name, state: t(`common:state.${stateFips}`) })),
+	);
 	return ({ areaName, kind, stateFips }: Area): string =>
-		kind === "county" && stateFips
-			? t("public:area.county", { name: areaName, state: t(`common:state.${stateFips}`) })
-			: areaName;
+		kind === "county" && stateFips ? countyOf(stateFips)({ name: areaName }) : areaName;
 }

@@ -1,4 +1,5 @@
 import { useTranslation } from "react-i18next";
+import { onceEach, sentencePattern } from "#app/i18n/sentence-pattern.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { FigureShape } from "#app/lib/format.ts";
 import type { DrawnCell } from "./map-data.ts";
@@ -6,23 +7,38 @@ import type { DrawnCell } from "./map-data.ts";
 /** "5-9" as it stands in the release, with the dash of print. */
 export const bandText = (band: string) => band.replace("-", "–");
 
+type Steadiness = NonNullable<DrawnCell["steadiness"]>;
+const numberGaps = ["name", "value", "lower", "upper"] as const;
+
 /** One area's figure as a sentence, for whoever hears the map instead of seeing it. */
 export function useCellWords(measure: FigureShape) {
 	const { t } = useTranslation("public");
 	const format = useFormat();
+	const figure = onceEach((value: number) => format.figure(value, measure));
+	const bandWords = onceEach((band: string | null | undefined) =>
+		band ? t("map.said.band", { band: bandText(band) }) : "",
+	);
+	const blank = onceEach((look: "withheld" | "no_growers" | "no_figure") => {
+		const words = look === "no_figure" ? t("common:figure.not_asked") : t(`map.legend.${look}`);
+		return sentencePattern(["name"], ({ name }) => t("map.said.plain", { name, words }));
+	});
+	const rough = onceEach((band: string) =>
+		sentencePattern(["name"], ({ name }) => t("map.said.rough", { name, band })),
+	);
+	const number = onceEach((key: Steadiness) => {
+		const steadiness = t(`common:steadiness.${key}`);
+		return onceEach((band: string) =>
+			sentencePattern(numberGaps, (marks) => t("map.said.number", { ...marks, band, steadiness })),
+		);
+	});
 	return (name: string, cell: DrawnCell | undefined): string => {
-		if (!cell) return t("map.said.plain", { name, words: t("common:figure.not_asked") });
-		if (cell.look === "withheld") return t("map.said.plain", { name, words: t("map.legend.withheld") });
-		if (cell.look === "no_growers") return t("map.said.plain", { name, words: t("map.legend.no_growers") });
-		if (cell.look === "no_figure") return t("map.said.plain", { name, words: t("common:figure.not_asked") });
-		const band = cell.respondentsBand ? t("map.said.band", { band: bandText(cell.respondentsBand) }) : "";
-		if (cell.look === "rough" || cell.value === null) return t("map.said.rough", { name, band });
-		return t("map.said.number", {
-			name,
-			band,
-			value: format.figure(cell.value, measure),
-			...format.ends(cell.lower ?? cell.value, cell.upper ?? cell.value, measure),
-			steadiness: t(`common:steadiness.${cell.steadiness ?? "care"}`),
-		});
+		if (!cell) return blank("no_figure")({ name });
+		if (cell.look === "withheld" || cell.look === "no_growers" || cell.look === "no_figure") {
+			return blank(cell.look)({ name });
+		}
+		const band = bandWords(cell.respondentsBand);
+		if (cell.look === "rough" || cell.value === null) return rough(band)({ name });
+		const ends = format.ends(cell.lower ?? cell.value, cell.upper ?? cell.value, measure);
+		return number(cell.steadiness ?? "care")(band)({ name, value: figure(cell.value), ...ends });
 	};
 }
