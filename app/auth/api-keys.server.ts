@@ -120,22 +120,33 @@ export function revokeApiKey(researcher: Researcher, apiKeyId: string): Promise<
 export type KnownKey = { apiKeyId: string; scopes: KeyScope[] };
 
 /**
- * Whose key a request carries, or why it opens nothing. A key of somebody who is no approved researcher any more is as good
- * as none. That it was used is noted once a minute at most, so that reading stays reading.
+ * Whose key a request carries, or why it opens nothing. A key rests while its owner is no approved researcher and opens again
+ * with the next approval, unless its own days are over by then: nobody else has had it. That it was used is noted once a minute
+ * at most, so that reading stays reading.
  */
-export function checkApiKey(key: string): Promise<KnownKey | "not_valid" | "expired"> {
+export function checkApiKey(key: string): Promise<KnownKey | "not_valid" | "expired" | "access_ended"> {
 	return scopedTransaction({ kind: "none" }, async (trx) => {
 		const row = await trx
 			.selectFrom("auth.api_key as k")
-			.innerJoin("auth.role_grant as g", "g.person_id", "k.person_id")
 			.select(["k.api_key_id", "k.scopes", "k.expires_at", "k.last_used_at"])
+			.select((eb) =>
+				eb
+					.exists(
+						eb
+							.selectFrom("auth.role_grant as g")
+							.select("g.role_grant_id")
+							.whereRef("g.person_id", "=", "k.person_id")
+							.where("g.role", "=", "researcher")
+							.where(grantHolds("g")),
+					)
+					.as("approved"),
+			)
 			.where("k.key_hash", "=", hash(key))
 			.where("k.revoked_at", "is", null)
-			.where("g.role", "=", "researcher")
-			.where(grantHolds("g"))
 			.executeTakeFirst();
 		if (!row) return "not_valid";
 		if (row.expires_at <= new Date()) return "expired";
+		if (!row.approved) return "access_ended";
 		if (!row.last_used_at || row.last_used_at.getTime() < Date.now() - 60_000) {
 			await trx
 				.updateTable("auth.api_key")

@@ -7,8 +7,8 @@ import { readNetworkClock } from "./network-clock.server.ts";
 import type { Trx } from "./scope.server.ts";
 import type { Coordinator } from "./viewer.ts";
 
-/** So many days before its last one, a grant's person is told by mail. */
-export const toldDaysBefore = 7;
+/** So many days before its last one, a grant's person is told by mail: in time to ask anew where that must be decided. */
+export const toldDaysBefore = { researcher: 30, others: 7 } as const;
 
 /** A grant's last day as typed; left empty there is none. */
 export const lastDay = optionalField(z.iso.date("date_wrong"));
@@ -106,7 +106,12 @@ export async function takeEndsToTell(trx: Trx): Promise<string[]> {
 		.where("p.email", "is not", null)
 		.where(grantHolds("g"))
 		.where("g.end_told_at", "is", null)
-		.where("g.ends_on", "<=", sql<string>`auth.network_today() + ${toldDaysBefore}::int`)
+		.where(
+			"g.ends_on",
+			"<=",
+			sql<string>`auth.network_today() + case g.role when 'researcher' then ${toldDaysBefore.researcher}::int
+				else ${toldDaysBefore.others}::int end`,
+		)
 		.returning("g.role_grant_id")
 		.execute();
 	return rows.map(({ role_grant_id }) => role_grant_id);

@@ -1,7 +1,7 @@
 import { sql } from "kysely";
 import { z } from "zod";
 import { logEvent } from "./event-log.server.ts";
-import { addGrant } from "./grants.server.ts";
+import { findTerm, grantYear, selectTerms } from "./research-term.server.ts";
 import { scopedTransaction, type Trx } from "./scope.server.ts";
 import type { Coordinator, Person } from "./viewer.ts";
 
@@ -45,12 +45,17 @@ export function findOwnRequest(person: Person): Promise<AccessState> {
 	});
 }
 
-/** Files a request. A person has one open request at a time, so a double tap files one. */
+/**
+ * Files a request. A person has one open request at a time, so a double tap files one; one whose access goes on for long has
+ * nothing to ask for yet.
+ */
 export function requestAccess(
 	person: Person,
 	form: z.infer<typeof AccessRequestForm>,
-): Promise<"requested" | "already_open"> {
+): Promise<"requested" | "already_open" | "not_yet"> {
 	return scopedTransaction({ kind: "none" }, async (trx) => {
+		const term = await findTerm(trx, person.personId);
+		if (term && !term.renewable) return "not_yet";
 		const row = await trx
 			.insertInto("auth.access_request")
 			.values({
@@ -88,6 +93,14 @@ export function listAccessRequests(trx: Trx, _viewer: Coordinator) {
 		trx
 			.selectFrom("auth.access_request as r")
 			.innerJoin("auth.person as p", "p.person_id", "r.person_id")
+			.leftJoinLateral(
+				selectTerms(trx)
+					.where(sql<boolean>`g.person_id = r.person_id`)
+					.limit(1)
+					.as("term"),
+				(join) => join.onTrue(),
+			)
+			.select(["term.holds", "term.lastDay"])
 			.select([
 				"r.access_request_id as accessRequestId",
 				"r.person_id as personId",
@@ -118,7 +131,7 @@ export const AccessDecision = z
 	})
 	.refine((form) => form.decision === "approved" || form.reason.length > 0, { path: ["reason"], error: "empty" });
 
-/** Decides a request once; approving grants the researcher's role in the same transaction. */
+/** Decides a request once; approving gives the researcher's role for a year, or a year more, in the same transaction. */
 export async function decideAccess(trx: Trx, viewer: Coordinator, form: z.infer<typeof AccessDecision>) {
 	const request = await trx
 		.updateTable("auth.access_request")
@@ -134,10 +147,7 @@ export async function decideAccess(trx: Trx, viewer: Coordinator, form: z.infer<
 		.returning("person_id")
 		.executeTakeFirst();
 	if (!request) return "not_found";
-	if (form.decision === "approved") {
-		const { person_id: personId } = request;
-		await addGrant(trx, { personId, role: "researcher", grantedBy: viewer.personId });
-	}
+	if (form.decision === "approved") await grantYear(trx, viewer, request.person_id);
 	const subject = { subjectKind: "access_request", subjectId: form.accessRequestId };
 	await logEvent(trx, { personId: viewer.personId, action: `access.${form.decision}`, ...subject });
 	return form.decision;

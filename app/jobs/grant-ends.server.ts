@@ -37,7 +37,8 @@ export async function tellGrantEnd({ roleGrantId }: { roleGrantId: string }): Pr
 			role: grant.role,
 			stateFips: grant.stateFips,
 			day: formatterFor(language, t).day(grant.endsOn),
-			link: `${env().BASE_URL}/me`,
+			// A researcher asks for another year; for others a coordinator moves the day.
+			link: `${env().BASE_URL}${grant.role === "researcher" ? "/dataroom/access" : "/me"}`,
 		},
 		t,
 	);

@@ -21,8 +21,9 @@ export function writeGrantEndLetter({ language, network, link, name, ...grant }:
 		paragraphs: [
 			t("mail:grantEnd.greeting", values),
 			t("mail:grantEnd.what", values),
-			{ link, label: t("mail:grantEnd.button") },
-			t("mail:grantEnd.help"),
+			...(grant.role === "researcher"
+				? [t("mail:grantEnd.helpResearcher"), { link, label: t("mail:grantEnd.buttonResearcher") }]
+				: [{ link, label: t("mail:grantEnd.button") }, t("mail:grantEnd.help")]),
 		],
 		footer: network,
 		stop: null,

@@ -1,4 +1,4 @@
-import { sql } from "kysely";
+import { type RawBuilder, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { people } from "#fakes/sign-in/people.mjs";
 import { inventOperations, type SeedOperation } from "./operations.ts";
@@ -53,7 +53,10 @@ async function insertPeople(trx: Trx, issuer: string, operations: SeedOperation[
 			})
 			.returning("person_id")
 			.executeTakeFirstOrThrow();
-		const grant = (role: string, at: { state_fips?: string; operation_id?: string } = {}) =>
+		const grant = (
+			role: string,
+			at: { state_fips?: string; operation_id?: string; ends_on?: RawBuilder<string> } = {},
+		) =>
 			trx
 				.insertInto("auth.role_grant")
 				.values({ person_id, role, ...at, granted_at: listedAt })
@@ -61,7 +64,8 @@ async function insertPeople(trx: Trx, issuer: string, operations: SeedOperation[
 		if (person.role === "associate")
 			for (const state of person.stateFips) await grant("associate", { state_fips: state });
 		if (person.role === "coordinator") await grant("coordinator");
-		if (person.role === "researcher" && person.approved) await grant("researcher");
+		if (person.role === "researcher" && person.approved)
+			await grant("researcher", { ends_on: sql`auth.network_today() + 300` });
 		if (person.role !== "grower") continue;
 		const own = demoOperation(operations, person.stateFips[0]!);
 		await trx.updateTable("directory.owner").set({ name: person.name }).where("owner_id", "=", own.owner_id).execute();

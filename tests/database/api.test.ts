@@ -387,7 +387,9 @@ describe("keys", () => {
 		await owner.query("update auth.role_grant set revoked_at = now(), revoked_by = granted_by where person_id = $1", [
 			researcher.personId,
 		]);
-		expect((await get(of("/cells"), bearer(left))).status).toBe(401);
+		const rests = await get(of("/cells"), bearer(left));
+		expect(rests.status).toBe(403);
+		expect(await rests.json()).toMatchObject({ type: "https://survey.example/api#access_ended" });
 		expect((await get(of("/cells"), bearer(`tally_${"x".repeat(43)}`))).status).toBe(401);
 		expect((await get(of("/cells"), { headers: { authorization: "Basic abc" } })).status).toBe(401);
 	});

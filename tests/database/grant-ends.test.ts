@@ -2,11 +2,14 @@ import { sql } from "kysely";
 import type { Client } from "pg";
 import { createSession, RouterContextProvider } from "react-router";
 import { afterAll, beforeAll, expect, test } from "vitest";
+import { checkApiKey, makeApiKey } from "#app/auth/api-keys.server.ts";
 import { setGrantEnd } from "#app/auth/grant-end.server.ts";
 import { GrantForm, grantRole, listPeople, revokeGrant } from "#app/auth/grants.server.ts";
+import { decideAccess, findOwnRequest, listAccessRequests, requestAccess } from "#app/auth/research-access.server.ts";
+import { findOwnTerm } from "#app/auth/research-term.server.ts";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import { sessionContext, type VisitorSession } from "#app/auth/session.server.ts";
-import type { Coordinator } from "#app/auth/viewer.ts";
+import type { Coordinator, Person, Researcher } from "#app/auth/viewer.ts";
 import { visitorContext, visitorMiddleware } from "#app/auth/visitor.server.ts";
 import { tellGrantEnd, watchGrantEnds } from "#app/jobs/grant-ends.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
@@ -187,4 +190,80 @@ test("a week before, its holder is told once by mail in their language, and anew
 	await end(roleGrantId);
 	await tellGrantEnd({ roleGrantId });
 	expect(mailServer.received).toHaveLength(1);
+});
+
+/** A person asks for access and the coordinator says yes. */
+async function askAndApprove(person: Person, purpose: string): Promise<void> {
+	expect(await requestAccess(person, { affiliation: "Pomology", purpose, agreed: "on" })).toBe("requested");
+	const [request] = await asCoordinator((trx) => listAccessRequests(trx, coordinator));
+	const decision = { accessRequestId: request!.accessRequestId, decision: "approved" as const, reason: "" };
+	expect(await asCoordinator((trx) => decideAccess(trx, coordinator, decision))).toBe("approved");
+}
+/** The day a year after one that lies so many days from today. */
+async function yearAfter(days: number): Promise<string> {
+	const { rows } = await owner.query("select (auth.network_today() + $1::int + interval '1 year')::date::text as day", [
+		days,
+	]);
+	return rows[0].day;
+}
+
+test("a researcher's approval holds for a year, and asking near its end adds a year to its last day", async () => {
+	const person = (await addPerson(owner, "Jonas Weir", [])) as unknown as Person;
+	expect(await findOwnTerm(person)).toBeNull();
+	await askAndApprove(person, "How far frost reaches.");
+	expect(await findOwnTerm(person)).toMatchObject({ holds: true, renewable: false, lastDay: await yearAfter(0) });
+	const again = { affiliation: "Pomology", purpose: "More frost.", agreed: "on" as const };
+	expect(await requestAccess(person, again)).toBe("not_yet");
+
+	await letPass(person.personId, await dayIn(31));
+	expect(await requestAccess(person, again)).toBe("not_yet");
+	await letPass(person.personId, await dayIn(30));
+	await owner.query("update auth.person set email = 'jonas@fourrivers.example' where person_id = $1", [
+		person.personId,
+	]);
+	await watchGrantEnds();
+	const before = mailServer.received.length;
+	await tellGrantEnd({ roleGrantId: await grantOf(person.personId) });
+	expect(mailServer.received[before]!.text).toContain("/dataroom/access");
+	expect(await findOwnTerm(person)).toMatchObject({ holds: true, renewable: true });
+	expect(await findOwnRequest(person)).toMatchObject({ purpose: "How far frost reaches." });
+	await askAndApprove(person, "More frost.");
+	expect(await findOwnTerm(person)).toMatchObject({ holds: true, renewable: false, lastDay: await yearAfter(30) });
+	// The new end will be told anew.
+	expect(await count(owner, "auth.role_grant where person_id = $1 and end_told_at is null", [person.personId])).toBe(1);
+});
+
+test("keys rest when a researcher's year is over, and open again with the next one", async () => {
+	const person = (await addPerson(owner, "Mina Holt", [])) as unknown as Person;
+	await askAndApprove(person, "Bloom and bees.");
+	const researcher = { ...person, role: "researcher" } as Researcher;
+	const made = await makeApiKey(researcher, { label: "Notebook", scopes: ["figures"], days: "365" });
+	if (made === "too_many_keys") throw new Error(made);
+	expect(await checkApiKey(made.key)).toMatchObject({ scopes: ["figures"] });
+
+	const yesterday = await dayIn(-1);
+	await letPass(person.personId, yesterday);
+	expect(await checkApiKey(made.key)).toBe("access_ended");
+	expect(await checkApiKey(`${made.key}x`)).toBe("not_valid");
+	// Whether the daily job has noted it or not.
+	await watchGrantEnds();
+	expect(await findOwnTerm(person)).toMatchObject({ holds: false, lastDay: yesterday, renewable: true });
+	expect(await rightsOf(person.personId)).toMatchObject({ researcher: false });
+
+	await askAndApprove(person, "Bloom and bees, another year.");
+	const [listed] = await asCoordinator((trx) => listAccessRequests(trx, coordinator));
+	expect(listed).toMatchObject({ holds: true, lastDay: await yearAfter(0) });
+	expect(await checkApiKey(made.key)).toMatchObject({ scopes: ["figures"] });
+	expect(await rightsOf(person.personId)).toMatchObject({ researcher: true });
+});
+
+test("access given by hand without a last day stays so when a request that waited is approved", async () => {
+	const person = (await addPerson(owner, "Otis Fell", [])) as unknown as Person;
+	await requestAccess(person, { affiliation: "Pomology", purpose: "Apples.", agreed: "on" });
+	expect(await give(person.personId, "researcher")).toBe("granted");
+	const [request] = await asCoordinator((trx) => listAccessRequests(trx, coordinator));
+	const decision = { accessRequestId: request!.accessRequestId, decision: "approved" as const, reason: "" };
+	expect(await asCoordinator((trx) => decideAccess(trx, coordinator, decision))).toBe("approved");
+	expect(await findOwnTerm(person)).toMatchObject({ holds: true, lastDay: null, renewable: false });
+	expect(await count(owner, "auth.role_grant where person_id = $1", [person.personId])).toBe(1);
 });

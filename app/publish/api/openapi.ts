@@ -91,6 +91,7 @@ const anywhere: ProblemCode[] = [
 	"bad_parameter",
 	"key_not_valid",
 	"key_expired",
+	"access_ended",
 	"key_out_of_scope",
 	"method_not_allowed",
 	"not_acceptable",

@@ -6,6 +6,7 @@ export const problemStatus = {
 	bad_parameter: 400,
 	key_not_valid: 401,
 	key_expired: 401,
+	access_ended: 403,
 	key_out_of_scope: 403,
 	not_found: 404,
 	file_not_found: 404,

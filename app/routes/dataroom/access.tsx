@@ -3,8 +3,8 @@ import { data, Form, href, redirect } from "react-router";
 import type { Route } from "./+types/access";
 import { requirePerson } from "#app/auth/guard.server.ts";
 import { AccessRequestForm, findOwnRequest, requestAccess } from "#app/auth/research-access.server.ts";
+import { findOwnTerm } from "#app/auth/research-term.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
-import { visitorContext } from "#app/auth/visitor.server.ts";
 import { Button, ButtonLink } from "#app/components/button.tsx";
 import { CheckField } from "#app/components/check-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
@@ -12,13 +12,18 @@ import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
-import { parseForm } from "#app/lib/parse-form.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
+import { type FormValues, parseForm } from "#app/lib/parse-form.ts";
 
 export async function loader({ context }: Route.LoaderArgs) {
 	const { viewer } = requirePerson(context);
-	const approved = context.get(visitorContext).grants.researcher;
-	const request = await findOwnRequest(viewer);
-	return { approved, waiting: request !== null && request.decision === null };
+	const [term, request] = await Promise.all([findOwnTerm(viewer), findOwnRequest(viewer)]);
+	return {
+		term,
+		waiting: request !== null && request.decision === null,
+		// What was told last time, so that it is looked over and not typed anew. The agreement is accepted each time.
+		earlier: request && { affiliation: request.affiliation, purpose: request.purpose },
+	};
 }
 
 export async function action({ context, request }: Route.ActionArgs) {
@@ -33,27 +38,41 @@ export async function action({ context, request }: Route.ActionArgs) {
 
 export default function AskAccess({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("dataroom");
-	const { approved, waiting } = loaderData;
-	return (
-		<Page title={t("access.title")} lead={t("access.lead")} width="narrow">
-			{approved || waiting ? (
-				<Notice tone="info" title={t(approved ? "access.haveTitle" : "home.waitingTitle")}>
+	const format = useFormat();
+	const { term, waiting, earlier } = loaderData;
+	const day = (iso: string | null) => (iso ? format.day(iso) : "");
+	const lasting = term !== null && !term.renewable;
+	if (lasting || waiting)
+		return (
+			<Page title={t("access.title")} lead={t("access.lead")} width="narrow">
+				<Notice tone="info" title={t(waiting ? "home.waitingTitle" : "access.haveTitle")}>
+					{lasting && term.lastDay && (
+						<p className="mb-3">{t("access.haveBody", { day: day(term.lastDay), from: day(term.renewableFrom) })}</p>
+					)}
 					<ButtonLink to={href("/dataroom")} kind="secondary">
 						{t("access.toFiles")}
 					</ButtonLink>
 				</Notice>
-			) : (
-				<RequestForm actionData={actionData} />
-			)}
+			</Page>
+		);
+	const lead = term
+		? t(term.holds ? "access.leadEnding" : "access.leadEnded", { day: day(term.lastDay) })
+		: t("access.lead");
+	return (
+		<Page title={t(term ? "access.titleAgain" : "access.title")} lead={lead} width="narrow">
+			<RequestForm earlier={earlier} actionData={actionData} />
 		</Page>
 	);
 }
 
-function RequestForm({ actionData }: Pick<Route.ComponentProps, "actionData">) {
+type RequestFormProps = Pick<Route.ComponentProps, "actionData"> & Pick<Route.ComponentProps["loaderData"], "earlier">;
+
+function RequestForm({ earlier, actionData }: RequestFormProps) {
 	const { t } = useTranslation("dataroom");
 	const problemOf = (field: string) => actionData?.problems.find((problem) => problem.field === field);
+	const values: FormValues = actionData?.values ?? earlier ?? {};
 	const typed = (field: string) => {
-		const value = actionData?.values[field];
+		const value = values[field];
 		return typeof value === "string" ? value : "";
 	};
 	return (

@@ -4,27 +4,33 @@ import type { Route } from "./+types/home";
 import { requirePerson } from "#app/auth/guard.server.ts";
 import { listFollowed } from "#app/auth/release-follows.server.ts";
 import { findOwnRequest } from "#app/auth/research-access.server.ts";
+import { findOwnTerm } from "#app/auth/research-term.server.ts";
 import { visitorContext } from "#app/auth/visitor.server.ts";
-import { ButtonLink } from "#app/components/button.tsx";
 import { DataTable } from "#app/components/data-table.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
-import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { isStanding } from "#app/publish/release.ts";
 import { listEveryRelease } from "#app/publish/releases.server.ts";
+import { AccessState } from "./parts/access-state.tsx";
 import { FollowedReleases } from "./parts/followed-releases.tsx";
 
 export async function loader({ context }: Route.LoaderArgs) {
 	const { viewer } = requirePerson(context);
 	const approved = context.get(visitorContext).grants.researcher;
-	const [every, followed] = await Promise.all([listEveryRelease(), listFollowed(viewer)]);
+	const [every, followed, term, request] = await Promise.all([
+		listEveryRelease(),
+		listFollowed(viewer),
+		findOwnTerm(viewer),
+		findOwnRequest(viewer),
+	]);
 	const releases = every.filter(isStanding);
 	return {
 		approved,
-		request: approved ? null : await findOwnRequest(viewer),
+		term,
+		request,
 		// The newest edition of each, whatever became of it.
 		follows: followed.flatMap((seriesId) => every.find((release) => release.seriesId === seriesId) ?? []),
 		releases: releases.map(({ number, season, title, publishedAt }) => ({ number, season, title, publishedAt })),
@@ -32,12 +38,12 @@ export async function loader({ context }: Route.LoaderArgs) {
 }
 
 export default function DataRoom({ loaderData }: Route.ComponentProps) {
-	const { approved, request, releases, follows } = loaderData;
+	const { approved, term, request, releases, follows } = loaderData;
 	const { t, i18n } = useTranslation("dataroom");
 	const format = useFormat();
 	return (
 		<Page title={t("home.title")} lead={t("home.lead")}>
-			{!approved && <RequestState request={request} />}
+			<AccessState term={term} request={request} />
 			<DataTable
 				caption={t("home.files")}
 				rows={releases}
@@ -89,32 +95,5 @@ function FileLinks({ number }: { number: number }) {
 				{t("home.codebook", { number })}
 			</a>
 		</span>
-	);
-}
-
-function RequestState({ request }: Pick<Route.ComponentProps["loaderData"], "request">) {
-	const { t } = useTranslation("dataroom");
-	const format = useFormat();
-	const ask = <ButtonLink to={href("/dataroom/access")}>{t("home.ask")}</ButtonLink>;
-	if (!request) {
-		return (
-			<Notice tone="info" title={t("home.noRequestTitle")}>
-				<p className="mb-3">{t("home.noRequestBody")}</p>
-				{ask}
-			</Notice>
-		);
-	}
-	if (request.decision === "declined") {
-		return (
-			<Notice tone="attention" title={t("home.declinedTitle")}>
-				<p className="mb-3">{request.decisionReason}</p>
-				{ask}
-			</Notice>
-		);
-	}
-	return (
-		<Notice tone="info" title={t("home.waitingTitle")}>
-			{t("home.waitingBody", { day: format.dayOf(request.requestedAt) })}
-		</Notice>
 	);
 }

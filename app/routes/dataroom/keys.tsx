@@ -12,6 +12,7 @@ import {
 } from "#app/auth/api-keys.server.ts";
 import { apiLimits } from "#app/auth/api-limits.server.ts";
 import { requirePerson, requireResearcher } from "#app/auth/guard.server.ts";
+import { findOwnTerm } from "#app/auth/research-term.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { visitorContext } from "#app/auth/visitor.server.ts";
 import { Button, ButtonLink } from "#app/components/button.tsx";
@@ -28,10 +29,11 @@ import { refusal } from "#app/lib/refusal.ts";
 import { KeyTable } from "./parts/key-table.tsx";
 
 export async function loader({ context }: Route.LoaderArgs) {
-	requirePerson(context);
+	const { viewer } = requirePerson(context);
 	const approved = context.get(visitorContext).grants.researcher;
 	return {
 		approved,
+		endedOn: approved ? null : ((await findOwnTerm(viewer))?.lastDay ?? null),
 		now: new Date(),
 		keys: approved ? await listApiKeys(requireResearcher(context)) : [],
 		limits: apiLimits,
@@ -65,16 +67,11 @@ export async function action({ context, request }: Route.ActionArgs) {
 export default function Keys({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("dataroom");
 	const format = useFormat();
-	const { approved, keys, limits, now } = loaderData;
+	const { approved, endedOn, keys, limits, now } = loaderData;
 	const lead = t("keys.lead", { open: format.number(limits.open), key: format.number(limits.key) });
 	return (
 		<Page title={t("keys.title")} lead={lead}>
-			{!approved && (
-				<Notice tone="info" title={t("keys.notApprovedTitle")}>
-					<p className="mb-3">{t("keys.notApprovedBody")}</p>
-					<ButtonLink to={href("/dataroom/access")}>{t("home.ask")}</ButtonLink>
-				</Notice>
-			)}
+			{!approved && <NoKeys endedOn={endedOn} />}
 			{actionData?.key && <MadeKey value={actionData.key} />}
 			{approved && (
 				<>
@@ -85,6 +82,23 @@ export default function Keys({ loaderData, actionData }: Route.ComponentProps) {
 				</>
 			)}
 		</Page>
+	);
+}
+
+/** For who is not approved, or is not any more: keys that were made before rest meanwhile. */
+function NoKeys({ endedOn }: { endedOn: string | null }) {
+	const { t } = useTranslation("dataroom");
+	const format = useFormat();
+	return endedOn ? (
+		<Notice tone="attention" title={t("home.endedTitle", { day: format.day(endedOn) })}>
+			<p className="mb-3">{t("keys.restBody")}</p>
+			<ButtonLink to={href("/dataroom/access")}>{t("home.askAgain")}</ButtonLink>
+		</Notice>
+	) : (
+		<Notice tone="info" title={t("keys.notApprovedTitle")}>
+			<p className="mb-3">{t("keys.notApprovedBody")}</p>
+			<ButtonLink to={href("/dataroom/access")}>{t("home.ask")}</ButtonLink>
+		</Notice>
 	);
 }
 

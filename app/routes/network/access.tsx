@@ -1,3 +1,4 @@
+import type { TFunction } from "i18next";
 import { useTranslation } from "react-i18next";
 import { data, Form, href, redirect } from "react-router";
 import type { Route } from "./+types/access";
@@ -90,6 +91,7 @@ function RequestCard({ request, actionData, form }: CardProps) {
 					{ term: t("requests.email"), detail: request.email ?? "" },
 					{ term: t("access.affiliation"), detail: request.affiliation },
 					{ term: t("access.purpose"), detail: <p className="whitespace-pre-line">{request.purpose}</p> },
+					...(request.decision ? [] : [{ term: t("requests.before"), detail: accessBefore(request, format, t) }]),
 					{ term: t("requests.when"), detail: format.moment(request.requestedAt) },
 					{ term: t("requests.agreement"), detail: request.agreementVersion },
 					...(request.decisionReason ? [{ term: t("requests.reason"), detail: request.decisionReason }] : []),
@@ -99,6 +101,18 @@ function RequestCard({ request, actionData, form }: CardProps) {
 			{form === "decide" && <DecideForm request={request} actionData={actionData} />}
 		</article>
 	);
+}
+
+/** Whether it is a first request or one for another year. */
+function accessBefore(
+	{ holds, lastDay }: AccessRequest,
+	format: ReturnType<typeof useFormat>,
+	t: TFunction<"dataroom">,
+) {
+	if (holds === null) return t("requests.never");
+	const day = lastDay ? format.day(lastDay) : "";
+	if (holds) return lastDay ? t("requests.until", { day }) : t("requests.withoutEnd");
+	return t("requests.endedOn", { day });
 }
 
 function DecideForm({ request, actionData }: CardProps) {

@@ -83,6 +83,7 @@ async function keyOf(request: Request, operation: Operation): Promise<KnownKey |
 	const key = given ? await checkApiKey(given) : "not_valid";
 	if (key === "not_valid") throw new ApiProblem("key_not_valid", [], challenge);
 	if (key === "expired") throw new ApiProblem("key_expired", [], challenge);
+	if (key === "access_ended") throw new ApiProblem("access_ended");
 	if (!key.scopes.includes(operation.scope)) throw new ApiProblem("key_out_of_scope");
 	return key;
 }
