@@ -30,6 +30,7 @@ import { secret } from "./publish-fixture.ts";
 import { addOddRelease, addReleaseWithFiles } from "./released-files-fixture.ts";
 import { addPerson, connectOwner, useDatabase } from "./surveys-fixture.ts";
 
+const takesCsv = { headers: { accept: "text/csv" } };
 type Json = Record<string, unknown>;
 type Row = Record<string, string | number | null>;
 type Page = { data: Row[]; next: string | null };
@@ -193,6 +194,26 @@ describe("the figures", () => {
 		expect(pages).toBe(Math.ceil(all.length / 4));
 		expect(found).toEqual(all);
 	});
+
+	// JSON is cut out of what a process keeps of a release, CSV is asked for each time.
+	test.each(["", "&crop=plum", "&measure=first_bloom.day,yield_per_tree&crop=apple", "&area=19103"])(
+		"come by one cursor in both formats, so that a script may change between them: %s",
+		async (filters) => {
+			const codesOf = (row: Row) => [row.measure, row.crop, row.area_code, String(row.value ?? "")];
+			const whole = parse(await (await get(of(`/cells?limit=10000${filters}`), takesCsv)).text(), { columns: true });
+			const found: Row[] = [];
+			let next: string | null = `https://survey.example/api/v1${of(`/cells?limit=3${filters}`)}`;
+			for (let pages = 0; next; pages++) {
+				const response = await get(next, pages % 2 === 0 ? {} : takesCsv);
+				const rows =
+					pages % 2 === 0 ? ((await response.json()) as Page).data : parse(await response.text(), { columns: true });
+				found.push(...(rows as Row[]));
+				next = /<(.*)>/.exec(response.headers.get("link") ?? "")?.[1] ?? null;
+			}
+			expect(found.length).toBeGreaterThan(3);
+			expect(found.map(codesOf)).toEqual((whole as Row[]).map(codesOf));
+		},
+	);
 
 	test.each<[string, (row: Row) => boolean]>([
 		["measure=crop_loss", (row) => row.measure === "crop_loss"],

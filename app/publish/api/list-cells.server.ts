@@ -69,7 +69,7 @@ function selectPage(releaseId: string, query: CellsQuery, after: Place | null) {
 }
 
 /** Cells of one measure, which stands beside them as `m`. */
-function selectCells(releaseId: string, query: CellsQuery, after: Place | null) {
+export function selectCells(releaseId: string, query: Omit<CellsQuery, "limit">, after: Place | null) {
 	let cells = reader()
 		.selectFrom("release.cell as c")
 		.innerJoin("release.area as a", (join) =>

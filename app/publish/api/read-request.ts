@@ -38,10 +38,16 @@ function valuesOf(schema: z.ZodObject, search: URLSearchParams): { values: Recor
 	return { values, wrong };
 }
 
-const schemaOf = (schema: z.ZodObject, name: string) =>
-	Object.hasOwn(schema.shape, name)
-		? (z.toJSONSchema(schema.shape[name] as z.ZodType, { io: "input" }) as Json)
-		: undefined;
+/** Told once of each parameter, as telling it takes longer than the rest of a request's reading. */
+const told = new WeakMap<z.ZodType, Json>();
+
+function schemaOf(schema: z.ZodObject, name: string): Json | undefined {
+	if (!Object.hasOwn(schema.shape, name)) return undefined;
+	const parameter = schema.shape[name] as z.ZodType;
+	const known = told.get(parameter) ?? (z.toJSONSchema(parameter, { io: "input" }) as Json);
+	told.set(parameter, known);
+	return known;
+}
 type Json = {
 	type?: string;
 	items?: Json;

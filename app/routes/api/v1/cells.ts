@@ -1,4 +1,5 @@
 import type { Route } from "./+types/cells";
+import { pageOfBlocks } from "#app/publish/api/cell-blocks.server.ts";
 import { listCellPage } from "#app/publish/api/list-cells.server.ts";
 import { operations } from "#app/publish/api/operations.ts";
 import { listAreas, listCrops, listMeasures } from "#app/publish/releases.server.ts";
@@ -31,7 +32,10 @@ export function loader(args: Route.LoaderArgs) {
 				areas.flatMap(({ kind, key }) => (kind === "state" ? [key] : [])),
 			);
 		}
-		return listAnswer(operations.cells, asked, releaseId, (after) => listCellPage(release, asked.query, after));
+		return listAnswer(operations.cells, asked, releaseId, async (after) => {
+			const cut = asked.type === "application/json" ? await pageOfBlocks(release, asked.query, after) : null;
+			return cut ?? listCellPage(release, asked.query, after);
+		});
 	});
 }
 export const action = loader;

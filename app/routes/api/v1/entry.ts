@@ -14,7 +14,7 @@ export function loader(args: Route.LoaderArgs) {
 	};
 	return answer(operations.entry, args, async () => ({
 		version: site,
-		body: async () => ({ text: JSON.stringify(entry) }),
+		body: async () => ({ content: JSON.stringify(entry) }),
 	}));
 }
 export const action = loader;

@@ -22,7 +22,7 @@ export function loader(args: Route.LoaderArgs) {
 				const features = areaShapes(areas, kind)
 					.filter(({ area }) => !state || (area.stateFips !== null && state.includes(area.stateFips)))
 					.map(({ area, shape }) => ({ type: "Feature", id: area.key, geometry: shape, properties: areaItem(area) }));
-				return { text: JSON.stringify({ type: "FeatureCollection", features }) };
+				return { content: JSON.stringify({ type: "FeatureCollection", features }) };
 			},
 		};
 	});

@@ -10,7 +10,7 @@ export function loader(args: Route.LoaderArgs) {
 	const language = getLanguage(args.context);
 	return answer(operations.openapi, args, async ({ words }) => ({
 		version: language,
-		body: async () => ({ text: JSON.stringify(openApiDocument(env().BASE_URL, words[language])) }),
+		body: async () => ({ content: JSON.stringify(openApiDocument(env().BASE_URL, words[language])) }),
 	}));
 }
 export const action = loader;

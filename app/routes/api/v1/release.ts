@@ -15,7 +15,7 @@ export function loader(args: Route.LoaderArgs) {
 			version: JSON.stringify(release),
 			async body() {
 				const bands = await listRespondentsBands();
-				return { text: JSON.stringify(releaseItem(release, bands[release.releaseId] ?? null, env().BASE_URL)) };
+				return { content: JSON.stringify(releaseItem(release, bands[release.releaseId] ?? null, env().BASE_URL)) };
 			},
 		};
 	});

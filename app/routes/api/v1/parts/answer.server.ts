@@ -12,7 +12,7 @@ import { ApiProblem, problemBody, problemStatus } from "#app/publish/api/problem
 import { readRequest } from "#app/publish/api/read-request.ts";
 import { matches } from "#app/publish/cached-json.server.ts";
 import { csvType } from "#app/publish/files/release-file.ts";
-import { keptBody } from "./kept-bodies.server.ts";
+import { keptBody, type MadeBody } from "./kept-bodies.server.ts";
 
 type Args = {
 	request: Request;
@@ -34,8 +34,7 @@ export type Asked<O extends Operation> = {
  * What is answered: either a response that is ready, or what its tag is made of, with the body to be made only for who has
  * no copy of it.
  */
-export type Answer =
-	{ response: Response } | { version: string; body(): Promise<{ text: string; next?: string | null }> };
+export type Answer = { response: Response } | { version: string; body(): Promise<MadeBody> };
 
 const open = {
 	"access-control-allow-origin": "*",

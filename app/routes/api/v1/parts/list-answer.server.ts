@@ -9,7 +9,8 @@ import { findRelease } from "#app/publish/releases.server.ts";
 import type { Answer, Asked } from "./answer.server.ts";
 
 type Row = Record<string, string | number | null>;
-type Page = { rows: readonly Row[]; last?: Place | null };
+/** Rows, or what they are as JSON already, in one or several runs with commas between all rows. */
+type Page = ({ rows: readonly Row[] } | { json: readonly Uint8Array[] }) & { last?: Place | null };
 
 /** @throws ApiProblem 404 without such a release, 410 where its figures were withdrawn. */
 export async function standingRelease(number: number): Promise<Release> {
@@ -31,12 +32,21 @@ export function listAnswer<O extends Operation>(
 	return {
 		version,
 		async body() {
-			const { rows, last } = await list(after);
-			const next = last ? nextAddress(request, cursorOf(last, question)) : null;
-			return { text: type === "text/csv" ? csvOf(operation.item!, rows) : JSON.stringify({ data: rows, next }), next };
+			const page = await list(after);
+			const next = page.last ? nextAddress(request, cursorOf(page.last, question)) : null;
+			if ("json" in page) return { content: jsonOf(page.json, next), next };
+			const { rows } = page;
+			return {
+				content: type === "text/csv" ? csvOf(operation.item!, rows) : JSON.stringify({ data: rows, next }),
+				next,
+			};
 		},
 	};
 }
+
+/** As `JSON.stringify({ data, next })` would write it. */
+const jsonOf = (rows: readonly Uint8Array[], next: string | null) =>
+	Buffer.concat([Buffer.from('{"data":['), ...rows, Buffer.from(`],"next":${JSON.stringify(next)}}`)]);
 
 function csvOf(item: z.ZodObject, rows: readonly Row[]): string {
 	const columns = Object.keys(item.shape);
