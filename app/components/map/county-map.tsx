@@ -4,7 +4,7 @@ import { Button } from "#app/components/button.tsx";
 import { classes } from "#app/components/classes.ts";
 import type { FigureShape } from "#app/lib/format.ts";
 import { useCellWords } from "./cell-words.ts";
-import type { Direction, LiveMap } from "./live-map.client.ts";
+import type { LiveMap } from "./live-map.client.ts";
 import { mapKey, ZoomButtons } from "./map-keys.tsx";
 import { StaticMap, type StaticMapProps } from "./static-map.tsx";
 import { useLiveMap } from "./use-live-map.ts";
@@ -38,7 +38,7 @@ export function CountyMap(props: CountyMapProps) {
 	const container = useRef<HTMLDivElement>(null);
 	const [hover, setHover] = useState<{ areaKey: string; x: number; y: number } | null>(null);
 	/** Where the arrow keys stand; a fast walker presses the next key before the page has drawn the last. */
-	const walked = useRef<{ fips: string | null; areaKey: string | null; drawn: string | null } | null>(null);
+	const walked = useRef<{ areaKey: string | null; drawn: string | null } | null>(null);
 	const areaOf = (fips: string | null) => (fips && drawn.areaOfCounty[fips]) || null;
 	const { state, live, retry } = useLiveMap(
 		container,
@@ -77,11 +77,10 @@ export function CountyMap(props: CountyMapProps) {
 		} else if (step === "in" || step === "out") live.zoom(step === "in" ? 1 : -1);
 		else {
 			const { current } = walked;
-			const going = current && (current.areaKey === chosen || current.drawn === chosen) ? current.fips : null;
-			const start = going ?? Object.keys(drawn.areaOfCounty).find((fips) => chosen && areaOf(fips) === chosen) ?? null;
-			const fips = walk(start, step, live.next, areaOf);
-			walked.current = { fips, areaKey: areaOf(fips), drawn: chosen };
-			onChoose(areaOf(fips));
+			const going = current && (current.areaKey === chosen || current.drawn === chosen);
+			const areaKey = live.next(going ? current.areaKey : chosen, step);
+			walked.current = { areaKey, drawn: chosen };
+			onChoose(areaKey);
 		}
 	};
 	const ready = state === "ready";
@@ -135,23 +134,6 @@ function useFraming(live: LiveMap | null, focus: string | null) {
 		live.frame(focus);
 		framed.current = focus;
 	}, [live, focus]);
-}
-
-/** Steps until another area is reached: a district is several counties wide. */
-function walk(
-	start: string | null,
-	direction: Direction,
-	next: (fips: string | null, direction: Direction) => string | null,
-	areaOf: (fips: string | null) => string | null,
-): string | null {
-	let here = start;
-	for (let steps = 0; steps < 40; steps += 1) {
-		const there = next(here, direction);
-		if (there === here) return here;
-		here = there;
-		if (areaOf(here) !== null && (start === null || areaOf(here) !== areaOf(start))) return here;
-	}
-	return here;
 }
 
 /** Beside the pointer and never under it. The same words stand in the table, so a screen reader need not hear them twice. */

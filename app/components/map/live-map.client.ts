@@ -1,8 +1,9 @@
 import type { ExpressionSpecification, GeoJSONSource, Map as LibraryMap, MapMouseEvent } from "maplibre-gl";
 import { colorsOfPage, dotImage, hatchImage, type MapColors } from "./map-colors.client.ts";
 import type { FiguresAnswer, GeometryAnswer, DrawnHue } from "./map-data.ts";
-import { boundsOf, middlesOf, nextCounty, ringsOf } from "./map-places.ts";
+import { areaMiddles, boundsOf, middlesOf, ringsOf } from "./map-places.ts";
 import { paintedBy } from "./map-style.ts";
+import { type Walk, walkOver } from "./map-walk.ts";
 import type { MapView, Viewer } from "./view-link.ts";
 import { openMap, type OpenMapOptions } from "./open-map.client.ts";
 import { outerEdge } from "./outer-edge.ts";
@@ -16,15 +17,14 @@ export type LiveMap = Viewer & {
 	show: (figures: FiguresAnswer, hue: DrawnHue) => Promise<void>;
 	/** Outlines every county drawn from an area; null for none. */
 	mark: (areaKey: string | null) => void;
-	/** The county that lies next in a direction, so that arrow keys walk over the map. */
-	next: (fips: string | null, direction: Direction) => string | null;
+	/** The area that lies next in a direction, so that arrow keys walk over the map. */
+	next: Walk;
 	/** Goes to one state, which is then what `reset` shows; to all of them with null. */
 	frame: (state: string | null) => void;
 	zoom: (steps: number) => void;
 	reset: () => void;
 	remove: () => void;
 };
-export type Direction = "up" | "down" | "left" | "right";
 
 /** Draws the map into its container. Resolves when the first picture stands. @throws where WebGL is missing. */
 export async function createLiveMap(options: LiveMapOptions): Promise<LiveMap> {
@@ -50,6 +50,8 @@ function controls(map: LibraryMap, geometry: GeometryAnswer): LiveMap {
 	let home = boundsOf(geometry);
 	const middles = middlesOf(geometry);
 	let shown: { figures: FiguresAnswer; hue: DrawnHue } | undefined;
+	/** Made at the first step: most readers take none. */
+	let walk: Walk | undefined;
 	const paint = () => shown && repaint(map, shown.figures, colorsOfPage(shown.hue));
 	const dark = matchMedia("(prefers-color-scheme: dark)");
 	dark.addEventListener("change", paint);
@@ -57,6 +59,7 @@ function controls(map: LibraryMap, geometry: GeometryAnswer): LiveMap {
 		...viewer(map),
 		show(figures, hue) {
 			shown = { figures, hue };
+			walk = undefined;
 			paint();
 			return new Promise((resolve) => map.once("idle", () => resolve()));
 		},
@@ -72,7 +75,10 @@ function controls(map: LibraryMap, geometry: GeometryAnswer): LiveMap {
 			};
 			map.getSource<GeoJSONSource>("marked")?.setData(border);
 		},
-		next: (fips, direction) => nextCounty(middles, fips, direction),
+		next(from, direction) {
+			walk ??= walkOver(areaMiddles(middles, shown?.figures.areaOfCounty ?? {}));
+			return walk(from, direction);
+		},
 		frame(state) {
 			home = boundsOf(geometry, state);
 			map.fitBounds(home, { padding: 16, duration: 0 });

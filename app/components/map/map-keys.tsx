@@ -1,6 +1,6 @@
 import { useTranslation } from "react-i18next";
 import { Button } from "#app/components/button.tsx";
-import type { Direction } from "./live-map.client.ts";
+import type { Direction } from "./map-walk.ts";
 
 const arrows: Record<string, Direction> = { ArrowUp: "up", ArrowDown: "down", ArrowLeft: "left", ArrowRight: "right" };
 

@@ -2,24 +2,8 @@ import { expect, test } from "vitest";
 import { usTopology } from "#app/lib/geography/topology.server.ts";
 import { countyFeatures } from "#app/lib/geography/counties.ts";
 import { countyOfPin } from "#app/lib/geography/county-of-pin.server.ts";
-import { countyAt, middlesOf, nextCounty, type Place } from "./map-places.ts";
+import { countyAt } from "./map-places.ts";
 import { outerEdge, pathOfEdges, ringsOfPath } from "./outer-edge.ts";
-
-/** A chequerboard of nine places, row by row from the north. */
-const board: Place[] = [..."abcdefghi"].map((fips, index) => ({ fips, x: index % 3, y: -Math.floor(index / 3) }));
-
-test("arrow keys walk to the neighbour in their direction", () => {
-	expect(nextCounty(board, "e", "up")).toBe("b");
-	expect(nextCounty(board, "e", "down")).toBe("h");
-	expect(nextCounty(board, "e", "left")).toBe("d");
-	expect(nextCounty(board, "e", "right")).toBe("f");
-});
-
-test("the walk begins in the middle, and stays where it is at the edge", () => {
-	expect(nextCounty(board, null, "up")).toBe("e");
-	expect(nextCounty(board, "c", "right")).toBe("c");
-	expect(nextCounty([], null, "up")).toBeNull();
-});
 
 test("the border of two squares side by side has six sides: the shared one falls away", () => {
 	const rings = ringsOfPath("M0,0L1,0L1,1L0,1ZM1,0L2,0L2,1L1,1Z");
@@ -45,19 +29,4 @@ test("the map names the county of a place as the server finds it, and none outsi
 		}
 	}
 	expect(found).toBeGreaterThan(100);
-});
-
-test("arrow keys alone reach every county of four states from where the walk begins", () => {
-	const { features } = countyFeatures(usTopology(), ["17", "19", "27", "55"], 4);
-	const counties = features.map((county) => ({ ...county, properties: { fips: String(county.id) } }));
-	const places = middlesOf({ counties: { type: "FeatureCollection", features: counties } });
-	const reached = new Set<string>();
-	const next = [nextCounty(places, null, "up")!];
-	for (let here = next.shift(); here; here = next.shift()) {
-		if (reached.has(here)) continue;
-		reached.add(here);
-		next.push(...(["up", "down", "left", "right"] as const).map((way) => nextCounty(places, here!, way)!));
-	}
-	expect(places.length).toBeGreaterThan(300);
-	expect(places.filter(({ fips }) => !reached.has(fips))).toEqual([]);
 });

@@ -1,6 +1,7 @@
 import type { GeometryAnswer } from "./map-data.ts";
 
-export type Place = { fips: string; x: number; y: number };
+/** A county or another area of a map by its key, and where its middle lies. */
+export type Place = { key: string; x: number; y: number };
 type Box = [west: number, south: number, east: number, north: number];
 type Shape = { properties: { fips: string }; geometry: { coordinates: unknown } };
 
@@ -65,35 +66,19 @@ export function middlesOf(geometry: Pick<GeometryAnswer, "counties">): Place[] {
 	return featuresOf(geometry).map(({ properties, geometry: { coordinates } }) => {
 		const [west, south, east, north] = boxOf(positions(coordinates));
 		const y = (south + north) / 2;
-		return { fips: properties.fips, x: ((west + east - left - right) / 2) * Math.cos((y * Math.PI) / 180), y };
+		return { key: properties.fips, x: ((west + east - left - right) / 2) * Math.cos((y * Math.PI) / 180), y };
 	});
 }
 
-const ways = { up: [0, 1], down: [0, -1], left: [-1, 0], right: [1, 0] } as const;
-
-/**
- * The county to which an arrow key leads: the nearest whose middle lies in that direction, what lies aside counting
- * double. From nowhere the walk begins in the middle of the map; at the map's edge it stays where it is.
- */
-export function nextCounty(places: Place[], fips: string | null, direction: keyof typeof ways): string | null {
-	const here = places.find((place) => place.fips === fips);
-	if (!here) return middleOf(places)?.fips ?? null;
-	const [wayX, wayY] = ways[direction];
-	let best: { fips: string; cost: number } | null = null;
-	for (const place of places) {
-		const [x, y] = [place.x - here.x, place.y - here.y];
-		const ahead = x * wayX + y * wayY;
-		const aside = Math.abs(x * wayY) + Math.abs(y * wayX);
-		if (ahead <= 1e-6 || aside > 1.5 * ahead) continue;
-		const cost = ahead + 2 * aside;
-		if (!best || cost < best.cost) best = { fips: place.fips, cost };
+/** The middle of each area that is drawn, which is that of its counties' middles. */
+export function areaMiddles(counties: readonly Place[], areaOfCounty: Record<string, string | null>): Place[] {
+	const within = new Map<string, Place[]>();
+	for (const county of counties) {
+		const areaKey = areaOfCounty[county.key];
+		if (areaKey) within.set(areaKey, [...(within.get(areaKey) ?? []), county]);
 	}
-	return best?.fips ?? here.fips;
+	return [...within].map(([key, of]) => ({ key, x: meanOf(of, "x"), y: meanOf(of, "y") }));
 }
 
-function middleOf(places: Place[]): Place | undefined {
-	const mean = (read: (place: Place) => number) => places.reduce((sum, place) => sum + read(place), 0) / places.length;
-	const [x, y] = [mean((place) => place.x), mean((place) => place.y)];
-	const far = (place: Place) => (place.x - x) ** 2 + (place.y - y) ** 2;
-	return places.toSorted((a, b) => far(a) - far(b))[0];
-}
+const meanOf = (places: readonly Place[], axis: "x" | "y") =>
+	places.reduce((sum, place) => sum + place[axis], 0) / places.length;

@@ -1,8 +1,8 @@
 import type { GeoJSONSource, LngLatLike, Map as LibraryMap } from "maplibre-gl";
 import type { Pin } from "#app/lib/geography/pin.ts";
-import type { Direction } from "./live-map.client.ts";
 import { colorsOfPage } from "./map-colors.client.ts";
 import { boundsOf, countyAt } from "./map-places.ts";
+import type { Direction } from "./map-walk.ts";
 import { openMap, type OpenMapOptions } from "./open-map.client.ts";
 
 export type PinMapOptions = OpenMapOptions & {
