@@ -28,9 +28,9 @@ try {
 	makeLocal();
 	await ensurePackages();
 	const wanted = process.argv.slice(2);
-	// Only the pages are measured in a browser.
+	// Pages and the map are measured in a browser.
 	const parts = wanted.filter((word) => !word.startsWith("-"));
-	const looks = parts.length === 0 || parts.includes("pages");
+	const looks = parts.length === 0 || ["pages", "map"].some((part) => parts.includes(part));
 	// The built pages are also asked for while shields are chosen.
 	if (looks || parts.includes("protect")) await ensureBuild();
 	const browser = looks ? { CHROMIUM_PATH: await ensureChromium() } : {};

@@ -8,6 +8,7 @@ export const parts: Record<string, () => Promise<Part>> = {
 	tally: async () => (await import("./tally.ts")).tally,
 	submission: async () => (await import("./submission.ts")).submission,
 	pages: async () => (await import("./pages.ts")).pages,
+	map: async () => (await import("./map.ts")).map,
 	api: async () => (await import("./api.ts")).api,
 	protect: async () => (await import("./protect.ts")).protect,
 };
