@@ -72,7 +72,7 @@ function directionTo(from: Place, to: Place): Direction {
 	return y > 0 ? "up" : "down";
 }
 
-type Neighborhood = { within: (here: Place, reach: number) => Place[]; span: number };
+type Neighborhood = { within: (here: Place, out: number) => Place[]; span: number };
 
 /** Places by squares of a degree, so that nobody looks through all thousands of them for one nearby. */
 function neighborhood(places: readonly Place[]): Neighborhood {
@@ -82,11 +82,11 @@ function neighborhood(places: readonly Place[]): Neighborhood {
 		squares.set(square, [...(squares.get(square) ?? []), place]);
 	}
 	const span = Math.max(...["x", "y"].map((axis) => spanOf(places.map((place) => place[axis as "x" | "y"]))));
-	const within = ({ x, y }: Place, reach: number) => {
-		if (reach > 8) return [...places];
+	const within = ({ x, y }: Place, out: number) => {
+		if (out > 8) return [...places];
 		const found: Place[] = [];
-		for (let column = Math.floor(x - reach); column <= x + reach; column += 1) {
-			for (let row = Math.floor(y - reach); row <= y + reach; row += 1) {
+		for (let column = Math.floor(x - out); column <= x + out; column += 1) {
+			for (let row = Math.floor(y - out); row <= y + out; row += 1) {
 				found.push(...(squares.get(`${column} ${row}`) ?? []));
 			}
 		}
