@@ -1,5 +1,7 @@
 import { sql } from "kysely";
 import { z } from "zod";
+import { type Order, pageByKey, type PagePart } from "#app/lib/page-by-key.server.ts";
+import type { PageByKey } from "#app/lib/page-by-key.ts";
 import { Words } from "#app/lib/words.ts";
 import { selectEvents } from "./event-filter.server.ts";
 import type { LogQuery } from "./log-query.ts";
@@ -45,19 +47,17 @@ export type LoggedEvent = {
 	told: z.infer<typeof Told>;
 };
 
-export type LogPage = {
-	rows: LoggedEvent[];
-	/** The events beside which the neighbouring pages begin; null where there is none. */
-	older: number | null;
-	newer: number | null;
-	total: number;
-	moreThanTotal: boolean;
+export type LogPage = PageByKey<LoggedEvent> & { total: number; moreThanTotal: boolean };
+
+const newestFirst: Order = {
+	keys: [
+		{ by: sql.ref("e.happened_at"), kind: "instant" },
+		{ by: sql.ref("e.event_id"), kind: "int8" },
+	],
+	direction: "desc",
 };
 
-/**
- * A page of what was done, newest first. Pages begin beside an event and not at a number, so that what is logged meanwhile
- * moves none of them.
- */
+/** A page of what was done, newest first. */
 export async function listEvents(trx: Trx, viewer: Coordinator, query: LogQuery): Promise<LogPage> {
 	const counted = await trx
 		.selectFrom(
@@ -68,23 +68,12 @@ export async function listEvents(trx: Trx, viewer: Coordinator, query: LogQuery)
 		)
 		.select((eb) => eb.fn.countAll<number>().as("total"))
 		.executeTakeFirstOrThrow();
-	const count = { total: Math.min(counted.total, countedTo), moreThanTotal: counted.total > countedTo };
-	if (query.newer) {
-		const found = await readEvents(trx, viewer, query, { newer: query.newer }, logPageSize + 1);
-		// A page that reaches the newest is the first page, whole.
-		if (found.length > logPageSize) {
-			const rows = found.slice(0, logPageSize).toReversed();
-			return { rows, newer: rows[0]!.eventId, older: rows.at(-1)!.eventId, ...count };
-		}
-	}
-	const from = query.newer ? {} : { older: query.older };
-	const found = await readEvents(trx, viewer, query, from, logPageSize + 1);
-	const rows = found.slice(0, logPageSize);
+	const page = await pageByKey(newestFirst, query, logPageSize, (part) => readEvents(trx, viewer, query, part));
 	return {
-		rows,
-		newer: from.older ? (rows[0]?.eventId ?? null) : null,
-		older: found.length > logPageSize ? rows.at(-1)!.eventId : null,
-		...count,
+		...page,
+		rows: page.rows.map(toEvent),
+		total: Math.min(counted.total, countedTo),
+		moreThanTotal: counted.total > countedTo,
 	};
 }
 
@@ -95,59 +84,50 @@ export async function listAllEvents(
 	query: LogQuery,
 	most: number,
 ): Promise<LoggedEvent[] | undefined> {
-	const rows = await readEvents(trx, viewer, query, {}, most + 1);
-	return rows.length > most ? undefined : rows;
+	const { rows, after } = await pageByKey(newestFirst, {}, most, (part) => readEvents(trx, viewer, query, part));
+	return after === null ? rows.map(toEvent) : undefined;
 }
 
-/** Events before one, or after one and then the oldest first. */
-async function readEvents(
-	trx: Trx,
-	viewer: Coordinator,
-	query: LogQuery,
-	beside: { older?: number | undefined; newer?: number | undefined },
-	most: number,
-): Promise<LoggedEvent[]> {
-	const direction = beside.newer ? "asc" : "desc";
-	const edge = beside.newer ?? beside.older;
-	const place = sql`(select b.happened_at, b.event_id from log.event b where b.event_id = ${edge ?? 0})`;
-	const side = beside.newer ? sql.raw(">") : sql.raw("<");
+async function readEvents(trx: Trx, viewer: Coordinator, query: LogQuery, part: PagePart) {
 	// The page is found first; what its events are about is then looked up for those alone.
 	const page = selectEvents(trx, viewer, query)
-		.$if(edge !== undefined, (events) => events.where(sql<boolean>`(e.happened_at, e.event_id) ${side} ${place}`))
+		.where(part.beyond)
 		.select(["e.event_id", "e.happened_at", "e.person_id", "e.action", "e.subject_kind", "e.subject_id"])
 		.select(["e.state_fips", "e.detail"])
-		.orderBy("e.happened_at", direction)
-		.orderBy("e.event_id", direction)
-		.limit(most);
-	const rows = await trx
-		.selectFrom(page.as("e"))
-		.leftJoin("auth.person as p", "p.person_id", "e.person_id")
-		// A subject is told by kind and id as text, whatever table it lies in.
-		.leftJoin("auth.access_request as r", (join) =>
-			join.on("e.subject_kind", "=", "access_request").on(sql`r.access_request_id::text`, "=", sql.ref("e.subject_id")),
-		)
-		.leftJoin("auth.person as a", "a.person_id", "r.person_id")
-		.leftJoin("auth.person as g", (join) =>
-			join.on("e.subject_kind", "=", "person").on(sql`g.person_id::text`, "=", sql.ref("e.subject_id")),
-		)
-		.leftJoin("collect.survey as s", (join) => join.on(sql`s.survey_id::text`, "=", surveyOfEvent))
-		.select([
-			"e.event_id",
-			"e.happened_at",
-			"p.display_name",
-			"p.email",
-			"e.action",
-			sql<string | null>`coalesce(g.display_name, a.display_name)`.as("about"),
-			"s.season",
-			"s.title",
-			formOfEvent.as("form"),
-			"e.state_fips",
-			"e.detail",
-		])
-		.orderBy("e.happened_at", direction)
-		.orderBy("e.event_id", direction)
-		.execute();
-	return rows.map(toEvent);
+		.orderBy(part.inOrder)
+		.limit(part.limit);
+	return (
+		trx
+			.selectFrom(page.as("e"))
+			.leftJoin("auth.person as p", "p.person_id", "e.person_id")
+			// A subject is told by kind and id as text, whatever table it lies in.
+			.leftJoin("auth.access_request as r", (join) =>
+				join
+					.on("e.subject_kind", "=", "access_request")
+					.on(sql`r.access_request_id::text`, "=", sql.ref("e.subject_id")),
+			)
+			.leftJoin("auth.person as a", "a.person_id", "r.person_id")
+			.leftJoin("auth.person as g", (join) =>
+				join.on("e.subject_kind", "=", "person").on(sql`g.person_id::text`, "=", sql.ref("e.subject_id")),
+			)
+			.leftJoin("collect.survey as s", (join) => join.on(sql`s.survey_id::text`, "=", surveyOfEvent))
+			.select([
+				"e.event_id",
+				"e.happened_at",
+				"p.display_name",
+				"p.email",
+				"e.action",
+				sql<string | null>`coalesce(g.display_name, a.display_name)`.as("about"),
+				"s.season",
+				"s.title",
+				formOfEvent.as("form"),
+				"e.state_fips",
+				"e.detail",
+			])
+			.select(part.place.as("place"))
+			.orderBy(part.inOrder)
+			.execute()
+	);
 }
 
 /** The survey that an event is about, as text. */

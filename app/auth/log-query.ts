@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { besideParts } from "#app/lib/page-by-key.ts";
 import { logActions, logSubjects } from "./log-actions.ts";
 
 const allActions = logSubjects.flatMap((subject) => logActions[subject].map((verb) => `${subject}.${verb}`));
@@ -8,11 +9,10 @@ const shown = new Set<string>(["all", ...logSubjects, ...allActions]);
 export const byLink = "link";
 
 const day = z.iso.date().or(z.literal("")).catch("");
-const eventId = z.coerce.number().int().positive().max(Number.MAX_SAFE_INTEGER).optional().catch(undefined);
 
 /**
  * What the log is asked for, in its address. A wrong or missing part falls back; nothing typed is an error. Days are on the
- * network's clock and `to` is the last one. `older` and `newer` name the event beside which a page begins.
+ * network's clock and `to` is the last one.
  */
 export const LogQuery = z.object({
 	q: z.string().trim().max(200).catch(""),
@@ -24,13 +24,12 @@ export const LogQuery = z.object({
 	survey: z.guid().or(z.literal("")).catch(""),
 	from: day,
 	to: day,
-	older: eventId,
-	newer: eventId,
+	...besideParts,
 });
 export type LogQuery = z.infer<typeof LogQuery>;
 
 /** The parts of an address that a filter stands in, without those that say nothing. */
-export function logFilters({ older: _older, newer: _newer, show, ...rest }: LogQuery): URLSearchParams {
+export function logFilters({ after: _after, before: _before, show, ...rest }: LogQuery): URLSearchParams {
 	const parts = Object.entries({ ...rest, show: show === "all" ? "" : show });
 	return new URLSearchParams(parts.filter(([, value]) => value !== ""));
 }

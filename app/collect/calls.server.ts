@@ -1,6 +1,8 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import { type Order, pageByKey, type PagePart } from "#app/lib/page-by-key.server.ts";
+import type { Place } from "#app/lib/page-by-key.ts";
 import type { CallQuery, ContactOutcome } from "./contacts.schema.ts";
 import type { Disposition } from "./frame-list.server.ts";
 import { treesByOperation } from "./frame-trees.server.ts";
@@ -102,9 +104,8 @@ export async function listCalls(
 	const frame = sql`${waitedFor(viewer, surveyId)} and ${matching(query)}`;
 	const counted = await sql<{ total: number }>`select count(*)::int as total from ${frame}`.execute(trx);
 	const total = counted.rows[0]!.total;
-	const pageCount = Math.max(1, Math.ceil(total / pageSize));
-	const page = Math.min(query.page, pageCount);
-	const { rows } = await sql<CallRow>`
+	const read = async ({ beyond, inOrder, place, limit }: PagePart) => {
+		const { rows } = await sql<CallRow & { place: Place }>`
 		with waited as materialized (select f.operation_id, f.county_fips, f.stratum_key, f.disposition, o.name, o.contact_name,
 				o.phone, z.postal, z.time_zone, c.outcome, c.made_at, c.note, c.next_on, c.next_time, ${isDue} as due,
 				coalesce((c.made_at at time zone z.time_zone)::date = ${today}, false) as tried_today,
@@ -117,15 +118,29 @@ export async function listCalls(
 			w.postal as "statePostal", w.time_zone as "timeZone", w.disposition,
 			w.bearing_trees as "bearingTrees", w.outcome, w.made_at as "madeAt", w.note, w.next_on as "nextOn",
 			to_char(w.next_time, 'HH24:MI') as "nextTime", w.due, coalesce(e.answered, 0) as "answeredHere",
-			coalesce(e."frameSize", 0) as "askedHere", coalesce(e.share, 0) as share
+			coalesce(e."frameSize", 0) as "askedHere", coalesce(e.share, 0) as share, ${place} as place
 		from waited w join directory.county k on k.county_fips = w.county_fips
 			left join cell e on e."countyFips" = w.county_fips and e."stratumKey" = w.stratum_key
-		order by w.due desc, case when w.due then w.next_on end, case when w.due then w.next_time end,
-			coalesce(w.phone, '') = '', w.tried_today,
-			coalesce(e.worth, 0) desc, w.bearing_trees desc, w.operation_id
-		limit ${pageSize} offset ${(page - 1) * pageSize}`.execute(trx);
-	return { rows, total, page, pageCount };
+		where ${beyond} order by ${inOrder} limit ${limit}`.execute(trx);
+		return rows;
+	};
+	return { ...(await pageByKey(byWorth, query, pageSize, read)), total };
 }
+
+/** Promised ones by their time, those of no certain time at the end of their day. */
+const promisedAt = sql`coalesce(extract(epoch from case when w.due then w.next_on + coalesce(w.next_time, '24:00') end)::float8,
+	'infinity')`;
+const byWorth: Order = {
+	keys: [
+		{ by: promisedAt, kind: "float8" },
+		{ by: sql`(coalesce(w.phone, '') = '')`, kind: "boolean" },
+		{ by: sql.ref("w.tried_today"), kind: "boolean" },
+		{ by: sql`(- coalesce(e.worth, 0))`, kind: "float8" },
+		{ by: sql`(- w.bearing_trees)`, kind: "float8" },
+		{ by: sql.ref("w.operation_id"), kind: "uuid" },
+	],
+	direction: "asc",
+};
 
 /** How many calls were promised for today, or for a day that has gone by. */
 export async function countDueCalls(trx: Trx, viewer: Associate, surveyId: string): Promise<number> {

@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { besideParts } from "#app/lib/page-by-key.ts";
 import type { Disposition } from "./frame-list.server.ts";
 
 export const contactWays = ["telephone", "visit", "letter", "other"] as const;
@@ -51,12 +52,12 @@ export function dispositionAfter(
 
 export const callFilters = ["to_call", "due", "later", "all"] as const;
 
-/** `?q=&show=&state=&page=&call=` of the calls to make; `call` is the grower on the line. Nothing typed is an error. */
+/** `?q=&show=&state=&after=&before=&call=` of the calls to make; `call` is the grower on the line. Nothing typed is an error. */
 export const CallQuery = z.object({
 	q: z.string().trim().max(200).catch(""),
 	show: z.enum(callFilters).catch("to_call"),
 	state: z.string().max(2).catch("all"),
-	page: z.coerce.number().int().min(1).max(100_000).catch(1),
+	...besideParts,
 	call: z.guid().nullable().catch(null),
 });
 export type CallQuery = z.infer<typeof CallQuery>;

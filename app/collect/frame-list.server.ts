@@ -1,6 +1,7 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import { type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
 import type { FrameQuery } from "./desk-lists.schema.ts";
 import { listMails, type Mail } from "./mail-list.server.ts";
 
@@ -43,50 +44,55 @@ function selectFrame(trx: Trx, viewer: Associate, surveyId: string) {
 		.where("f.state_fips", "in", viewer.stateFips);
 }
 
-/** A page of a survey's growers. Equal sort values are ordered by id, so that no row shows twice or never while paging. */
+/** A page of a survey's growers, those of equal sort values by id. */
 export async function listFrame(trx: Trx, viewer: Associate, surveyId: string, query: FrameQuery) {
 	const matching = matchingFrame(trx, viewer, surveyId, query);
 	const { total } = await matching.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
 	const size = query.all ? largestPage : pageSize;
-	const pageCount = Math.max(1, Math.ceil(total / size));
-	const page = Math.min(query.page, pageCount);
-	const rows = await matching
-		.select([
-			"f.operation_id as operationId",
-			"o.name",
-			"o.contact_name as contactName",
-			"o.phone",
-			"o.email",
-			"c.name as countyName",
-			"s.postal as statePostal",
-			"f.disposition",
-			"r.response_id as responseId",
-			"r.submitted_at as submittedAt",
-			"r.withdrawn_at as withdrawnAt",
-		])
-		.orderBy(sortColumn[query.sort], (order) => order[query.direction]().nullsLast())
-		.orderBy("f.operation_id")
-		.limit(size)
-		.offset((page - 1) * size)
-		.execute();
+	const page = await pageByKey(orderOf(query), query, size, ({ beyond, inOrder, place, limit }) =>
+		matching.where(beyond).select(frameColumns).select(place.as("place")).orderBy(inOrder).limit(limit).execute(),
+	);
 	// Mails are looked up for the rows shown: joined above, they would be for every grower of the frame.
 	const mails = await listMails(
 		trx,
 		surveyId,
-		rows.map((row) => row.operationId),
+		page.rows.map((row) => row.operationId),
 	);
-	return { rows: rows.map((row) => toRow(row, mails.get(row.operationId))), total, page, pageCount };
+	return { ...page, rows: page.rows.map((row) => toRow(row, mails.get(row.operationId))), total };
 }
 
-const sortColumn = {
-	name: sql.ref("o.name"),
-	county: sql.ref("c.name"),
-	// From done to out of reach, as one works through the list.
-	disposition: sql`array_position(array['complete', 'partial', 'reached', 'not_reached', 'undeliverable', 'refused',
-		'not_eligible'],
-		f.disposition)`,
-	answered: sql.ref("r.submitted_at"),
-};
+const frameColumns = [
+	"f.operation_id as operationId",
+	"o.name",
+	"o.contact_name as contactName",
+	"o.phone",
+	"o.email",
+	"c.name as countyName",
+	"s.postal as statePostal",
+	"f.disposition",
+	"r.response_id as responseId",
+	"r.submitted_at as submittedAt",
+	"r.withdrawn_at as withdrawnAt",
+] as const;
+
+function orderOf({ sort, direction }: FrameQuery): Order {
+	const first = {
+		name: { by: sql.ref("o.name"), kind: "text" },
+		county: { by: sql.ref("c.name"), kind: "text" },
+		// From done to out of reach, as one works through the list.
+		disposition: {
+			by: sql`array_position(array['complete', 'partial', 'reached', 'not_reached', 'undeliverable', 'refused',
+				'not_eligible'], f.disposition)`,
+			kind: "int8",
+		},
+		// Who has not answered comes last either way.
+		answered: {
+			by: sql`coalesce(extract(epoch from r.submitted_at)::float8, ${direction === "asc" ? "infinity" : "-infinity"})`,
+			kind: "float8",
+		},
+	} as const;
+	return { keys: [first[sort], { by: sql.ref("f.operation_id"), kind: "uuid" }], direction };
+}
 
 function matchingFrame(trx: Trx, viewer: Associate, surveyId: string, { q, show }: FrameQuery) {
 	const pattern = `%${q.replace(/[\\%_]/g, String.raw`\$&`)}%`;

@@ -1,17 +1,18 @@
 import { z } from "zod";
+import { besideParts } from "#app/lib/page-by-key.ts";
 
 export const paperFilters = ["not_answered", "no_address"] as const;
 export const paperLanguages = ["own", "en", "es", "both"] as const;
 export const paperSizes = ["letter", "a4"] as const;
 
-/** `?show=&state=&language=&size=&page=` of the paper forms. A wrong or missing part falls back; nothing typed is an error. */
+/** `?show=&state=&language=&size=&after=&before=` of the paper forms. A wrong or missing part falls back; nothing typed is an error. */
 export const PaperQuery = z.object({
 	show: z.enum(paperFilters).catch("not_answered"),
 	state: z.string().max(2).catch("all"),
 	/** The operation's own unless another, or both one after the other, is asked for. */
 	language: z.enum(paperLanguages).catch("own"),
 	size: z.enum(paperSizes).catch("letter"),
-	page: z.coerce.number().int().min(1).max(100_000).catch(1),
+	...besideParts,
 });
 export type PaperQuery = z.infer<typeof PaperQuery>;
 

@@ -1,6 +1,7 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import { type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
 import { listPlantingsAsked } from "./answer-rows.server.ts";
 import { findSurveyForm } from "./forms.server.ts";
 import type { PaperQuery } from "./paper-forms.schema.ts";
@@ -33,27 +34,34 @@ export async function listPaperForms(
 		);
 	const { total } = await matching.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
 	if (operationId !== undefined && total === 0) return undefined;
-	const pageCount = Math.max(1, Math.ceil(total / pageSize));
-	const page = Math.min(query.page, pageCount);
-	const rows = await matching
-		.select(["f.operation_id as operationId", "o.name", "o.contact_name as contactName", "c.name as countyName"])
-		.select(["s.name as stateName", "o.language"])
-		.orderBy("s.name")
-		.orderBy("c.name")
-		.orderBy("o.name")
-		.orderBy("f.operation_id")
-		.limit(pageSize)
-		.offset((page - 1) * pageSize)
-		.execute();
+	const page = await pageByKey(byPlace, query, pageSize, ({ beyond, inOrder, place, limit }) =>
+		matching
+			.where(beyond)
+			.select(["f.operation_id as operationId", "o.name", "o.contact_name as contactName", "c.name as countyName"])
+			.select(["s.name as stateName", "o.language", place.as("place")])
+			.orderBy(inOrder)
+			.limit(limit)
+			.execute(),
+	);
 	const forms = [];
-	for (const row of rows) {
+	for (const row of page.rows) {
 		const plantings = await listPlantingsAsked(trx, { surveyId, operationId: row.operationId }, []);
 		forms.push({ ...row, language: row.language === "es" ? ("es" as const) : ("en" as const), plantings });
 	}
-	return { survey, definition, forms, total, page, pageCount };
+	return { survey, definition, forms, total, before: page.before, after: page.after };
 }
 export type PaperForms = NonNullable<Awaited<ReturnType<typeof listPaperForms>>>;
 export type PaperForm = PaperForms["forms"][number];
+
+const byPlace: Order = {
+	keys: [
+		{ by: sql.ref("s.name"), kind: "text" },
+		{ by: sql.ref("c.name"), kind: "text" },
+		{ by: sql.ref("o.name"), kind: "text" },
+		{ by: sql.ref("f.operation_id"), kind: "uuid" },
+	],
+	direction: "asc",
+};
 
 function selectForms(trx: Trx, viewer: Associate, surveyId: string) {
 	return trx

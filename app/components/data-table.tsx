@@ -73,7 +73,7 @@ function HeaderCell<Row>({ column, sort }: HeaderCellProps<Row>) {
 	const next = new URLSearchParams(search);
 	next.set("sort", column.key);
 	next.set("direction", sorted === "asc" ? "desc" : "asc");
-	next.delete("page");
+	for (const page of ["page", "before", "after"]) next.delete(page);
 	return (
 		<th
 			scope="col"

@@ -1,6 +1,7 @@
 import { type RawBuilder, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import { type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
 import { compareCrops } from "./crops.ts";
 import type { OperationQuery } from "./operation.schema.ts";
 import { isSeenBy, rowColumns, selectOperations } from "./operations.server.ts";
@@ -13,22 +14,25 @@ export const mostAtOnce = 50_000;
 export type Narrowing = RawBuilder<boolean> | null;
 export type OperationRow = Awaited<ReturnType<typeof listOperations>>["rows"][number];
 
-/** A page of operations. Equal sort values are ordered by id, so that no row shows twice or never while paging. */
+/** A page of operations, those of equal sort values by id. */
 export async function listOperations(trx: Trx, viewer: Associate, query: OperationQuery, narrowing: Narrowing = null) {
 	const matching = matchingOperations(trx, viewer, query, narrowing);
 	const { total } = await matching.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
-	const pageCount = Math.max(1, Math.ceil(total / pageSize));
-	const page = Math.min(query.page, pageCount);
-	const ids = await inOrder(matching, query)
-		.limit(pageSize)
-		.offset((page - 1) * pageSize)
-		.execute();
+	const order = orderOf(query);
+	const page = await pageByKey(order, query, pageSize, ({ beyond, inOrder, place, limit }) =>
+		sorted(matching, query)
+			.where(beyond)
+			.select(["o.operation_id as operationId", place.as("place")])
+			.orderBy(inOrder)
+			.limit(limit)
+			.execute(),
+	);
 	const rows = await listByIds(
 		trx,
 		viewer,
-		ids.map(({ operationId }) => operationId),
+		page.rows.map(({ operationId }) => operationId),
 	);
-	return { rows, total, page, pageCount };
+	return { ...page, rows, total };
 }
 
 /** The ids of all that match, in the list's order. */
@@ -38,7 +42,11 @@ export async function listMatchingIds(
 	query: OperationQuery,
 	narrowing: Narrowing = null,
 ): Promise<string[]> {
-	const ids = await inOrder(matchingOperations(trx, viewer, query, narrowing), query)
+	const { keys, direction } = orderOf(query);
+	const ids = await sorted(matchingOperations(trx, viewer, query, narrowing), query)
+		.select("o.operation_id as operationId")
+		.orderBy(keys[0]!.by, direction)
+		.orderBy("o.operation_id", direction)
 		.limit(mostAtOnce)
 		.execute();
 	return ids.map(({ operationId }) => operationId);
@@ -72,19 +80,20 @@ const growing = sql<{ crop_keys: string[]; bearing_trees: number }>`(select
 
 type Matching = ReturnType<typeof matchingOperations>;
 
-function inOrder(matching: Matching, { sort, direction }: OperationQuery) {
-	// Trees are added up for every row where they are sorted by, and only there.
-	if (sort === "trees")
-		return matching
-			.innerJoinLateral(growing, (join) => join.onTrue())
-			.select("o.operation_id as operationId")
-			.orderBy("g.bearing_trees", direction)
-			.orderBy("o.operation_id");
-	const column = { name: "o.name", owner: "o.contact_name", county: "c.name" } as const;
-	return matching
-		.select("o.operation_id as operationId")
-		.orderBy(sql.ref(column[sort]), direction)
-		.orderBy("o.operation_id");
+/** Trees are added up for every row where they are sorted by, and only there. */
+function sorted(matching: Matching, { sort }: OperationQuery) {
+	return matching.$if(sort === "trees", (rows) => rows.innerJoinLateral(growing, (join) => join.onTrue()));
+}
+
+function orderOf({ sort, direction }: OperationQuery): Order {
+	const id = { by: sql.ref("o.operation_id"), kind: "uuid" } as const;
+	const first = {
+		name: { by: sql.ref("o.name"), kind: "text" },
+		owner: { by: sql.ref("o.contact_name"), kind: "text" },
+		county: { by: sql.ref("c.name"), kind: "text" },
+		trees: { by: sql.ref("g.bearing_trees"), kind: "int8" },
+	} as const;
+	return { keys: [first[sort], id], direction };
 }
 
 const mailState = {

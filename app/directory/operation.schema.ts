@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { besideParts } from "#app/lib/page-by-key.ts";
 import { cropKeys } from "./crops.ts";
 
 /** Whether mail about surveys gets to an operation, and why not. */
@@ -7,7 +8,7 @@ export const mailStates = ["any", "reachable", "none", "returned", "stopped"] as
 export const answeredWhens = ["any", "this", "last", "not_this", "not_two", "never"] as const;
 
 /**
- * `?q=&state=&district=&crop=&answered=&mail=&sort=&direction=&page=`: what may stand in the address of the list of growers.
+ * `?q=&state=&district=&crop=&answered=&mail=&sort=&direction=&after=&before=`: what may stand in the address of the list of growers.
  * A wrong or missing part falls back; nothing typed is an error.
  */
 export const OperationQuery = z.object({
@@ -27,15 +28,13 @@ export const OperationQuery = z.object({
 	mail: z.enum(mailStates).catch("any"),
 	sort: z.enum(["name", "owner", "county", "trees"]).catch("name"),
 	direction: z.enum(["asc", "desc"]).catch("asc"),
-	page: z.coerce.number().int().min(1).max(100_000).catch(1),
+	...besideParts,
 });
 export type OperationQuery = z.infer<typeof OperationQuery>;
 
 /** The parts of a query that differ from the plain list, as they stand in its address. The page is no part of a view. */
-export function queryParts(query: OperationQuery): Record<string, string> {
+export function queryParts({ after: _after, before: _before, ...view }: OperationQuery): Record<string, string> {
 	const plain: Record<string, unknown> = OperationQuery.parse({});
-	const told = Object.entries(query).filter(
-		([name, value]) => name !== "page" && value !== null && value !== plain[name],
-	);
+	const told = Object.entries(view).filter(([name, value]) => value !== null && value !== plain[name]);
 	return Object.fromEntries(told.map(([name, value]) => [name, String(value)]));
 }

@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { besideParts } from "#app/lib/page-by-key.ts";
 import { checkKinds } from "./odd-answers.ts";
 
 /** How a finding ended: by an associate, or by itself as the answer or its neighbours changed. */
@@ -6,7 +7,7 @@ export const findingEnds = ["confirmed", "corrected", "set_aside", "answer_chang
 export const openStates = ["all", "asked", "said_right", "said_wrong", "confirmed_by_grower"] as const;
 export const findingSorts = ["effect", "grower", "county", "kind", "made"] as const;
 
-/** `?show=&kind=&crop=&county=&district=&state=&sort=&direction=&page=` of the queue. What is wrong falls back. */
+/** `?show=&kind=&crop=&county=&district=&state=&sort=&direction=&after=&before=` of the queue. What is wrong falls back. */
 export const FindingsQuery = z.object({
 	show: z.enum(["open", "ended"]).catch("open"),
 	kind: z.enum(["all", ...checkKinds]).catch("all"),
@@ -22,7 +23,7 @@ export const FindingsQuery = z.object({
 	state: z.enum([...openStates, ...findingEnds]).catch("all"),
 	sort: z.enum(findingSorts).catch("effect"),
 	direction: z.enum(["asc", "desc"]).catch("desc"),
-	page: z.coerce.number().int().min(1).max(100_000).catch(1),
+	...besideParts,
 	/** What was just confirmed at once, to be undone at once. */
 	batch: z.guid().nullable().catch(null),
 });

@@ -2,6 +2,7 @@ import { type RawBuilder, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { Answer } from "#app/collect/form.ts";
+import { type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
 import type { FindingsQuery } from "./findings.schema.ts";
 import type { CheckKind, Odd } from "./odd-answers.ts";
 import type { FindingEnd, FindingStep, Moved } from "./save-findings.server.ts";
@@ -10,22 +11,17 @@ const pageSize = 50;
 
 export type Finding = Awaited<ReturnType<typeof findFinding>> & {};
 
-/** A page of the queue. Equal values are ordered by id, so that no finding shows twice or never while paging. */
+/** A page of the queue, findings of equal sort values by id. */
 export async function listFindings(trx: Trx, viewer: Associate, surveyId: string, query: FindingsQuery) {
 	const matching = narrow(selectFindings(trx, viewer, surveyId), query);
 	const { total } = await matching
 		.clearSelect()
 		.select((eb) => eb.fn.countAll<number>().as("total"))
 		.executeTakeFirstOrThrow();
-	const pageCount = Math.max(1, Math.ceil(total / pageSize));
-	const page = Math.min(query.page, pageCount);
-	const rows = await matching
-		.orderBy(sortColumn[query.sort], (order) => order[query.direction]().nullsLast())
-		.orderBy("f.edit_finding_id")
-		.limit(pageSize)
-		.offset((page - 1) * pageSize)
-		.execute();
-	return { rows, total, page, pageCount };
+	const page = await pageByKey(orderOf(query), query, pageSize, ({ beyond, inOrder, place, limit }) =>
+		matching.where(beyond).select(place.as("place")).orderBy(inOrder).limit(limit).execute(),
+	);
+	return { ...page, total };
 }
 
 /** @returns undefined outside the viewer's states, for another survey's finding, and where the answers were taken back. */
@@ -115,13 +111,17 @@ function selectFindings(trx: Trx, viewer: Associate, surveyId: string) {
 	);
 }
 
-const sortColumn = {
-	effect: sql`f.effect`,
-	grower: sql`d.name`,
-	county: sql`c.name`,
-	kind: sql`f.check_kind`,
-	made: sql`f.made_at`,
-};
+function orderOf({ sort, direction }: FindingsQuery): Order {
+	const first = {
+		// What moves no figure comes last either way.
+		effect: { by: sql`coalesce(f.effect, ${direction === "asc" ? "infinity" : "-infinity"})`, kind: "float8" },
+		grower: { by: sql.ref("d.name"), kind: "text" },
+		county: { by: sql.ref("c.name"), kind: "text" },
+		kind: { by: sql.ref("f.check_kind"), kind: "text" },
+		made: { by: sql.ref("f.made_at"), kind: "instant" },
+	} as const;
+	return { keys: [first[sort], { by: sql.ref("f.edit_finding_id"), kind: "uuid" }], direction };
+}
 
 const stateConditions: Partial<Record<FindingsQuery["state"], RawBuilder<boolean>>> = {
 	asked: sql<boolean>`(q.asked_at is not null and q.reply is null)`,

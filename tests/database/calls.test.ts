@@ -82,15 +82,6 @@ describe("whom to ring next", () => {
 		expect((await namesOf(iowa, surveyId)).toSorted()).toEqual(["came back", "waits"]);
 	});
 
-	test("a list of many is the same on every visit, and no grower stands on two of its pages", async () => {
-		const { surveyId } = await ask(Array.from({ length: 57 }, (_, i) => ({ name: `Orchard ${i}` })));
-		const first = await callsOf(iowa, surveyId);
-		const second = await callsOf(iowa, surveyId, { page: "2" });
-		expect([first.rows.length, second.rows.length, first.total, first.pageCount]).toEqual([50, 7, 57, 2]);
-		expect(new Set([...first.rows, ...second.rows].map(({ operationId }) => operationId)).size).toBe(57);
-		expect((await callsOf(iowa, surveyId)).rows).toEqual(first.rows);
-	});
-
 	test("a paper form that came in is found by its number", async () => {
 		const { surveyId, ids } = await ask([{ name: "sent paper" }, { name: "did not" }]);
 		expect(await namesOf(iowa, surveyId, { q: ids["sent paper"]!.slice(0, 8).toUpperCase() })).toEqual(["sent paper"]);

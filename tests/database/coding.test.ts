@@ -23,7 +23,7 @@ async function lostToOther(words: string) {
 }
 
 const rowsOf = async (viewer: Associate, surveyId: string, show: "open" | "done" = "open") =>
-	(await asDesk(viewer, (trx) => readCoding(trx, viewer, surveyId, { show, page: 1 })))?.rows ?? [];
+	(await asDesk(viewer, (trx) => readCoding(trx, viewer, surveyId, { show })))?.rows ?? [];
 const code = (
 	viewer: Associate,
 	surveyId: string,

@@ -79,25 +79,15 @@ describe("the list", () => {
 		expect(last.size).toBe(2);
 	});
 
-	test("sorts and pages thousands without losing or doubling anyone", async () => {
+	test("chooses thousands at once without losing or doubling anyone", async () => {
 		await owner.query(
 			`with o as (insert into directory.owner (name) select 'Many' from generate_series(1, 3000) returning owner_id),
 			p as (insert into directory.operation (owner_id, name, county_fips, state_fips, contact_name)
 				select owner_id, 'Many of a name', '19103', '19', 'Nobody' from o returning operation_id)
 			insert into directory.planting (operation_id, crop_key, bearing_trees) select operation_id, 'hazelnut', 7 from p`,
 		);
-		for (const sort of ["name", "trees", "county", "owner"]) {
-			const seen = new Set<string>();
-			for (const page of [1, 2, 3, 30, 59, 60]) {
-				const { rows, total, pageCount } = await list(iowa, { crop: "hazelnut", sort, direction: "desc", page });
-				expect([rows.length, total, pageCount]).toEqual([50, 3000, 60]);
-				for (const { operationId, bearingTrees } of rows) {
-					expect(bearingTrees).toBe(7);
-					seen.add(operationId);
-				}
-			}
-			expect(seen.size).toBe(300);
-		}
+		const { rows, total } = await list(iowa, { crop: "hazelnut", sort: "trees", direction: "desc" });
+		expect([rows.length, total, rows[0]?.bearingTrees]).toEqual([50, 3000, 7]);
 		const query = OperationQuery.parse({ crop: "hazelnut" });
 		expect(new Set(await asDesk(iowa, (trx) => listMatchingIds(trx, iowa, query))).size).toBe(3000);
 	});
@@ -110,7 +100,7 @@ const views = (viewer: Associate) => asDesk(viewer, (trx) => listSavedViews(trx,
 describe("a saved view", () => {
 	test("keeps what differs from the plain list, and not the page", async () => {
 		const viewer = await addPerson(owner, "Keeper", ["19"]);
-		await keep(viewer, "Plums", { crop: "plum", mail: "none", sort: "name", direction: "desc", page: "7" });
+		await keep(viewer, "Plums", { crop: "plum", mail: "none", sort: "name", direction: "desc", after: '["Plum",1]' });
 		expect(await views(viewer)).toMatchObject([
 			{ name: "Plums", parts: { crop: "plum", mail: "none", direction: "desc" } },
 		]);

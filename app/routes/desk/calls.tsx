@@ -10,7 +10,7 @@ import { listEntryDrafts } from "#app/collect/entry-drafts.server.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
-import { Paging } from "#app/components/paging.tsx";
+import { KeyPaging } from "#app/components/key-paging.tsx";
 import { SearchBar } from "#app/components/search-bar.tsx";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -115,7 +115,7 @@ export default function Calls({ loaderData, actionData, params }: Route.Componen
 					{t("paper.all")}
 				</Link>
 			</p>
-			<Paging page={calls.page} pageCount={calls.pageCount} total={calls.total} />
+			<KeyPaging before={calls.before} after={calls.after} total={calls.total} />
 		</>
 	);
 }

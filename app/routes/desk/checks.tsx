@@ -6,8 +6,8 @@ import { sessionContext } from "#app/auth/session.server.ts";
 import { Button } from "#app/components/button.tsx";
 import { classes } from "#app/components/classes.ts";
 import { Confirm } from "#app/components/confirm.tsx";
+import { KeyPaging } from "#app/components/key-paging.tsx";
 import { NotDone, Notice } from "#app/components/notice.tsx";
-import { Paging } from "#app/components/paging.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { queueSurveyCheck } from "#app/jobs/check-answers.server.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
@@ -65,7 +65,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 
 /** What is odd about the answers of a survey, and what became of it. */
 export default function Checks({ loaderData, actionData, params }: Route.ComponentProps) {
-	const { query, rows, open, page, pageCount, total, undoable } = loaderData;
+	const { query, rows, open, before, after, total, undoable } = loaderData;
 	const { t } = useTranslation("checks");
 	const format = useFormat();
 	return (
@@ -94,7 +94,7 @@ export default function Checks({ loaderData, actionData, params }: Route.Compone
 					</div>
 				)}
 			</Form>
-			{total > 0 && <Paging page={page} pageCount={pageCount} total={total} />}
+			{total > 0 && <KeyPaging before={before} after={after} total={total} />}
 			{!loaderData.isDraft && (
 				<Form method="post" className="no-print mt-8">
 					<Button kind="quiet" name="act" value="check_again">

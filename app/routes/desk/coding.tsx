@@ -7,8 +7,8 @@ import { Button } from "#app/components/button.tsx";
 import { classes } from "#app/components/classes.ts";
 import { DataTable } from "#app/components/data-table.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
+import { KeyPaging } from "#app/components/key-paging.tsx";
 import { NotDone } from "#app/components/notice.tsx";
-import { Paging } from "#app/components/paging.tsx";
 import { Section } from "#app/components/section.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
@@ -42,7 +42,7 @@ export const shouldRevalidate = lookAgain;
 
 /** What growers told in words, to be counted under a code. */
 export default function CodingPage({ loaderData, actionData, params }: Route.ComponentProps) {
-	const { rows, page, pageCount, total, asks, query } = loaderData;
+	const { rows, before, after, total, asks, query } = loaderData;
 	const { t } = useTranslation("checks");
 	const format = useFormat();
 	const to = href("/desk/surveys/:surveyId/coding", params);
@@ -89,7 +89,7 @@ export default function CodingPage({ loaderData, actionData, params }: Route.Com
 					]}
 					empty={<EmptyState title={t(`coding.empty.${empty}.title`)}>{t(`coding.empty.${empty}.body`)}</EmptyState>}
 				/>
-				{total > 0 && <Paging page={page} pageCount={pageCount} total={total} />}
+				{total > 0 && <KeyPaging before={before} after={after} total={total} />}
 			</Section>
 		</>
 	);

@@ -7,12 +7,13 @@ import { sessionContext } from "#app/auth/session.server.ts";
 import { answeredCondition, listLastAnswers } from "#app/collect/last-answers.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
+import { KeyPaging } from "#app/components/key-paging.tsx";
 import { Page } from "#app/components/page.tsx";
-import { Paging } from "#app/components/paging.tsx";
 import { listAreas } from "#app/directory/areas.server.ts";
 import { OperationQuery, queryParts } from "#app/directory/operation.schema.ts";
 import { listOperations } from "#app/directory/operation-list.server.ts";
 import { dropView, listSavedViews, saveView } from "#app/directory/saved-views.server.ts";
+import { placeText } from "#app/lib/page-by-key.ts";
 import { parseForm } from "#app/lib/parse-form.ts";
 import { ChooseGrowers } from "./parts/growers/choose-growers.tsx";
 import { GrowerFilters } from "./parts/growers/grower-filters.tsx";
@@ -67,7 +68,7 @@ export async function action({ context, request }: Route.ActionArgs) {
 }
 
 export default function Growers({ loaderData, actionData }: Route.ComponentProps) {
-	const { rows, total, page, pageCount, query, views, parts } = loaderData;
+	const { rows, total, before, after, query, views, parts } = loaderData;
 	const { t } = useTranslation("growers");
 	return (
 		<Page
@@ -94,11 +95,12 @@ export default function Growers({ loaderData, actionData }: Route.ComponentProps
 				{Object.entries(parts).map(([name, value]) => (
 					<input key={name} type="hidden" name={name} value={value} />
 				))}
-				<input type="hidden" name="page" value={page} />
+				{query.after && <input type="hidden" name="after" value={placeText(query.after)} />}
+				{query.before && <input type="hidden" name="before" value={placeText(query.before)} />}
 				<GrowerTable rows={rows} query={query} />
 				{rows.length > 0 && <ChooseGrowers shown={rows.length} total={total} />}
 			</Form>
-			<Paging page={page} pageCount={pageCount} total={total} />
+			<KeyPaging before={before} after={after} total={total} />
 		</Page>
 	);
 }

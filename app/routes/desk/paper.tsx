@@ -7,8 +7,8 @@ import { listPaperForms } from "#app/collect/paper-forms.server.ts";
 import { Button } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
+import { KeyPaging } from "#app/components/key-paging.tsx";
 import { Page } from "#app/components/page.tsx";
-import { Paging } from "#app/components/paging.tsx";
 import { useHydrated } from "#app/components/use-hydrated.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -20,13 +20,13 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const query = PaperQuery.parse(Object.fromEntries(new URL(request.url).searchParams));
 	const papers = await desk.transaction((trx) => listPaperForms(trx, desk.viewer, params, query));
 	if (!papers) throw refusal(params.operationId ? "operation_not_found" : "survey_not_found");
-	const { survey, total, page, pageCount } = papers;
+	const { survey, total, before, after } = papers;
 	return {
 		query,
 		title: survey.title,
 		season: survey.season,
 		states: survey.stateFips.filter((one) => desk.viewer.stateFips.includes(one)),
-		paging: { total, page, pageCount },
+		paging: { total, before, after },
 		sheets: await paperSheets(papers, query),
 	};
 }
@@ -45,7 +45,7 @@ export default function Paper({ loaderData, params }: Route.ComponentProps) {
 						<Link to={href("/desk/surveys/:surveyId/calls", { surveyId })}>{t("paper.back")}</Link>
 					</p>
 					<Filters query={query} states={operationId ? [] : states} isOne={operationId !== undefined} />
-					{!operationId && <Paging {...paging} />}
+					{!operationId && <KeyPaging {...paging} />}
 					{sheets.length === 0 && <EmptyState title={t("paper.emptyTitle")}>{t("paper.emptyBody")}</EmptyState>}
 					{hydrated && sheets.length > 0 && (
 						<p className="mt-4">

@@ -7,7 +7,7 @@ import { listFrame } from "#app/collect/frame-list.server.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { Button, ButtonLink } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
-import { Paging } from "#app/components/paging.tsx";
+import { KeyPaging } from "#app/components/key-paging.tsx";
 import { SearchBar } from "#app/components/search-bar.tsx";
 import { useHydrated } from "#app/components/use-hydrated.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -61,8 +61,8 @@ export default function Responses({ loaderData, params }: Route.ComponentProps) 
 				timeZone={timeZone}
 				empty={state === "draft" ? "draft" : query.show === "all" && !query.q ? "nobody" : "noMatch"}
 			/>
-			<Paging page={frame.page} pageCount={frame.pageCount} total={frame.total} />
-			{frame.rows.length > 0 && <PrintPart all={query.all || frame.pageCount === 1} />}
+			<KeyPaging before={frame.before} after={frame.after} total={frame.total} />
+			{frame.rows.length > 0 && <PrintPart all={query.all || (frame.before === null && frame.after === null)} />}
 		</>
 	);
 }
@@ -75,7 +75,8 @@ function PrintPart({ all }: { all: boolean }) {
 	if (all && !hydrated) return null;
 	const whole = new URLSearchParams(search);
 	whole.set("all", "1");
-	whole.delete("page");
+	whole.delete("before");
+	whole.delete("after");
 	return (
 		<p className="no-print mt-6">
 			{all ? (

@@ -9,11 +9,11 @@ import { readNetworkClock } from "#app/auth/network-clock.server.ts";
 import { ButtonLink } from "#app/components/button.tsx";
 import { DataTable } from "#app/components/data-table.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
+import { KeyPaging } from "#app/components/key-paging.tsx";
 import { Page } from "#app/components/page.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { eventWords } from "./parts/log/event-words.ts";
 import { LogFilters } from "./parts/log/log-filters.tsx";
-import { LogPaging } from "./parts/log/log-paging.tsx";
 
 export async function loader({ context, request }: Route.LoaderArgs) {
 	const network = requireCoordinator(context);
@@ -28,11 +28,12 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 
 /** Who did what, newest first; never what a grower answered. */
 export default function Log({ loaderData }: Route.ComponentProps) {
-	const { rows, people, surveys, timeZone, query, ...page } = loaderData;
+	const { rows, people, surveys, timeZone, query, total, moreThanTotal, ...beside } = loaderData;
 	const { t, i18n } = useTranslation("network");
 	const format = useFormat();
 	const said = (event: LoggedEvent) => eventWords(event, { t, format, language: i18n.language, timeZone });
 	const filters = logFilters(query);
+	const count = { count: total, value: format.number(total) };
 	return (
 		<Page
 			title={t("log.title")}
@@ -61,7 +62,15 @@ export default function Log({ loaderData }: Route.ComponentProps) {
 				]}
 				empty={<EmptyState title={t("log.emptyTitle")}>{t("log.emptyBody")}</EmptyState>}
 			/>
-			<LogPaging {...page} query={query} />
+			<KeyPaging
+				{...beside}
+				total={total}
+				words={{
+					total: t(moreThanTotal ? "log.moreThan" : "log.total", count),
+					before: t("log.newer"),
+					after: t("log.older"),
+				}}
+			/>
 		</Page>
 	);
 }

@@ -4,14 +4,15 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { findSurveyForm } from "#app/collect/forms.server.ts";
 import { findSurvey, isId } from "#app/collect/surveys.server.ts";
+import { besideParts } from "#app/lib/page-by-key.ts";
 import { codedQuestionsOf, codesOf, suggestCodes } from "#app/review/coding.ts";
-import { listToldInWords } from "#app/review/coding.server.ts";
+import { countToldInWords, listCodedWords, listToldInWords, listWordsOfResponse } from "#app/review/coding.server.ts";
 import { addCorrection, lockForDecision } from "#app/review/decisions.server.ts";
 import { takeIn } from "./decide.server.ts";
 
 export const CodingQuery = z.object({
 	show: z.enum(["open", "done"]).catch("open"),
-	page: z.coerce.number().int().min(1).max(100_000).catch(1),
+	...besideParts,
 });
 export type CodingQuery = z.infer<typeof CodingQuery>;
 
@@ -28,34 +29,29 @@ export const Coding = z.object({
 });
 export type Coding = z.infer<typeof Coding>;
 
-const pageSize = 50;
-
 /** A page of what was told in words, with the codes of each and what is suggested. */
 export async function readCoding(trx: Trx, viewer: Associate, surveyId: string, query: CodingQuery) {
-	const read = await readWords(trx, viewer, surveyId);
-	if (!read) return undefined;
-	const { questions, definition, told } = read;
-	const before = told.flatMap(({ words, codes }) => (codes && codes.length > 0 ? [{ words, codes }] : []));
-	const chosen = told.filter(({ codes }) => (query.show === "open") === (codes === null));
-	const pageCount = Math.max(1, Math.ceil(chosen.length / pageSize));
-	const page = Math.min(query.page, pageCount);
-	const rows = chosen.slice((page - 1) * pageSize, page * pageSize).map((one) => {
+	const asked = await readQuestions(trx, viewer, surveyId);
+	if (!asked) return undefined;
+	const { questions, questionKeys, definition } = asked;
+	const { open, done } = await countToldInWords(trx, viewer, surveyId, questionKeys);
+	const page = await listToldInWords(trx, viewer, surveyId, { ...query, questionKeys });
+	const coded = query.show === "open" ? await listCodedWords(trx, viewer, surveyId, questionKeys) : [];
+	const rows = page.rows.map((one) => {
 		const question = questions.find(({ key }) => key === one.questionKey)!;
 		const choices = codesOf(definition, question, one.cropKey);
-		return { ...one, choices, suggested: one.codes === null ? suggestCodes(one.words, choices, before) : [] };
+		return { ...one, choices, suggested: one.codes === null ? suggestCodes(one.words, choices, coded) : [] };
 	});
-	const open = told.filter(({ codes }) => codes === null).length;
-	return { rows, page, pageCount, total: chosen.length, open, asks: questions.length > 0, query };
+	return { ...page, rows, total: query.show === "open" ? open : done, open, asks: questions.length > 0, query };
 }
 export type CodingRow = NonNullable<Awaited<ReturnType<typeof readCoding>>>["rows"][number];
 
-async function readWords(trx: Trx, viewer: Associate, surveyId: string) {
+async function readQuestions(trx: Trx, viewer: Associate, surveyId: string) {
 	const survey = await findSurvey(trx, viewer, surveyId);
 	const definition = survey && (await findSurveyForm(trx, surveyId));
 	if (!definition) return undefined;
 	const questions = codedQuestionsOf(definition);
-	const keys = questions.map(({ key }) => key);
-	return { definition, questions, told: await listToldInWords(trx, viewer, surveyId, keys) };
+	return { definition, questions, questionKeys: questions.map(({ key }) => key) };
 }
 
 /**
@@ -77,12 +73,12 @@ export async function giveCode(
 	if (!isId(surveyId)) return "not_found";
 	// The viewer's scope holds no row of another state, so this waits for none; what is read then nobody changes meanwhile.
 	await lockForDecision(trx, surveyId, responseId);
-	const read = await readWords(trx, viewer, surveyId);
-	const held = read?.told.find(
-		(told) => told.responseId === responseId && told.questionKey === questionKey && told.plantingId === plantingId,
-	);
-	const question = read?.questions.find(({ key }) => key === questionKey);
-	if (!read || !held || !question) return "not_found";
+	const read = await readQuestions(trx, viewer, surveyId);
+	if (!read) return "not_found";
+	const told = await listWordsOfResponse(trx, viewer, surveyId, { questionKeys: read.questionKeys, responseId });
+	const held = told.find((one) => one.questionKey === questionKey && one.plantingId === plantingId);
+	const question = read.questions.find(({ key }) => key === questionKey);
+	if (!held || !question) return "not_found";
 	const choices = codesOf(read.definition, question, held.cropKey);
 	if (code !== undefined && !choices.some(({ key }) => key === code)) return "not_found";
 	const codes = code === undefined ? [] : [code];

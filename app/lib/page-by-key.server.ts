@@ -1,0 +1,98 @@
+import { type RawBuilder, sql } from "kysely";
+import { z } from "zod";
+import { type Beside, type PageByKey, type Place, placeText } from "./page-by-key.ts";
+
+type Column = RawBuilder<unknown>;
+type KeyKind = { given: z.ZodType<Place[number]>; told: (by: Column) => Column; read: (value: unknown) => Column };
+
+const plain = (by: Column) => by;
+const microseconds = sql`interval '1 microsecond'`;
+
+/**
+ * How each kind of key is written into an address and read from one. Whatever is let in here, the database can read too: an
+ * address that somebody typed is no fault of the server.
+ */
+const keyKinds = {
+	text: {
+		given: z.string().refine((text) => !text.includes("\0")),
+		told: plain,
+		read: (value) => sql`${value}::text`,
+	},
+	uuid: { given: z.guid(), told: plain, read: (value) => sql`${value}::uuid` },
+	int8: { given: z.int(), told: plain, read: (value) => sql`${value}::int8` },
+	float8: {
+		given: z.union([z.number(), z.enum(["Infinity", "-Infinity"])]),
+		told: plain,
+		read: (value) => sql`${value}::float8`,
+	},
+	boolean: { given: z.boolean(), told: plain, read: (value) => sql`${value}::boolean` },
+	// To the microsecond, which a date of JavaScript does not hold.
+	instant: {
+		given: z.int(),
+		told: (by) => sql`(extract(epoch from ${by}) * 1000000)::int8`,
+		read: (value) => sql`(timestamptz 'epoch' + ${value}::int8 * ${microseconds})`,
+	},
+} satisfies Record<string, KeyKind>;
+
+/** What a list is in the order of. None is ever null, and the last is unlike in any two rows. */
+export type SortKey = { by: Column; kind: keyof typeof keyKinds };
+/** All keys go one way, so that an index on them serves the list from either end; one that goes the other way is negated. */
+export type Order = { keys: readonly SortKey[]; direction: "asc" | "desc" };
+/** What a query is given to read one page: a condition, an order, how many rows, and what to select as their `place`. */
+export type PagePart = { beyond: RawBuilder<boolean>; inOrder: Column; place: RawBuilder<Place>; limit: number };
+
+const otherWay = { asc: "desc", desc: "asc" } as const;
+
+/**
+ * A page of a list that begins beside a row and not at a number: rows that come or go on other pages move none, so that who
+ * goes from page to page sees no row twice and misses none. Where the wanted rows are gone, the nearest page is shown.
+ */
+export async function pageByKey<Row extends { place: Place }>(
+	order: Order,
+	{ after, before }: Beside,
+	size: number,
+	read: (part: PagePart) => Promise<Row[]>,
+): Promise<PageByKey<Omit<Row, "place">>> {
+	const back = { ...order, direction: otherWay[order.direction] };
+	const [end, start] = [placeIn(order, before), placeIn(order, after)];
+	if (end) {
+		const found = await read(partOf(back, end, size + 1));
+		if (found.length > 0)
+			return pageOf(found.slice(0, size).toReversed(), { before: found.length > size, after: true });
+	}
+	const from = end ? null : start;
+	const found = await read(partOf(order, from, size + 1));
+	if (found.length > 0 || !from)
+		return pageOf(found.slice(0, size), { before: from !== null, after: found.length > size });
+	const last = await read(partOf(back, null, size + 1));
+	return pageOf(last.slice(0, size).toReversed(), { before: last.length > size, after: false });
+}
+
+function pageOf<Row extends { place: Place }>(
+	rows: Row[],
+	more: { before: boolean; after: boolean },
+): PageByKey<Omit<Row, "place">> {
+	const [first, last] = [rows[0], rows.at(-1)];
+	return {
+		rows: rows.map(({ place: _place, ...row }) => row),
+		before: first && more.before ? placeText(first.place) : null,
+		after: last && more.after ? placeText(last.place) : null,
+	};
+}
+
+/** A place of an address as this order reads it, or null where it is of another. */
+function placeIn({ keys }: Order, place: Place | undefined): Place | null {
+	if (place?.length !== keys.length) return null;
+	return keys.every(({ kind }, i) => keyKinds[kind].given.safeParse(place[i]).success) ? place : null;
+}
+
+function partOf({ keys, direction }: Order, from: Place | null, limit: number): PagePart {
+	const values = from && sql.join(keys.map(({ kind }, i) => keyKinds[kind].read(from[i])));
+	const side = sql.raw(direction === "asc" ? ">" : "<");
+	return {
+		beyond: values ? sql<boolean>`(${sql.join(keys.map(({ by }) => by))}) ${side} (${values})` : sql<boolean>`true`,
+		inOrder: sql.join(keys.map(({ by }) => sql`${by} ${sql.raw(direction)}`)),
+		place: sql<Place>`jsonb_build_array(${sql.join(keys.map(({ by, kind }) => keyKinds[kind].told(by)))})`,
+		limit,
+	};
+}
