@@ -707,6 +707,13 @@ export interface PublishReportPhoto {
   width_px: number;
 }
 
+export interface ReadershipFileTaken {
+  file_name: string;
+  release_id: string;
+  taken_on: string;
+  times: number;
+}
+
 export interface ReadershipMailing {
   failed_as: string | null;
   report_id: string;
@@ -887,6 +894,7 @@ export interface DB {
   "publish.report_edit": PublishReportEdit;
   "publish.report_file": PublishReportFile;
   "publish.report_photo": PublishReportPhoto;
+  "readership.file_taken": ReadershipFileTaken;
   "readership.mailing": ReadershipMailing;
   "readership.report_read": ReadershipReportRead;
   "readership.request": ReadershipRequest;

@@ -81,8 +81,9 @@ async function readTold(trx: Trx): Promise<Told[]> {
 				where p.season = r.season and t.kind = 'pdf')::int as pdfs,
 			(select count(*) from report p join readership.mailing m using (report_id)
 				where p.season = r.season and m.sent_at is not null)::int as mails,
-			(select count(*) from log.download d join release.release o using (release_id)
-				where o.season = r.season)::int as downloads
+			((select count(*) from log.download d join release.release o using (release_id) where o.season = r.season)
+				+ (select coalesce(sum(t.times), 0) from readership.file_taken t join release.release o using (release_id)
+					where o.season = r.season))::int as downloads
 		from release.release r group by season`.execute(trx);
 	return rows;
 }
@@ -92,6 +93,7 @@ async function readNow(trx: Trx): Promise<Impact["now"]> {
 		(select count(*) from readership.subscriber)::int as subscribers,
 		(select count(distinct person_id) from auth.role_grant where role = 'researcher' and auth.grant_holds(revoked_at, ends_on))::int
 			as members,
-		(select min(read_on)::text from readership.report_read) as "readsSince"`.execute(trx);
+		(select min(read_on)::text from readership.report_read) as "readsSince",
+		(select min(taken_on)::text from readership.file_taken) as "filesSince"`.execute(trx);
 	return rows[0]!;
 }

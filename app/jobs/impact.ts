@@ -6,9 +6,9 @@ export const impactKeys = [
 export type ImpactKey = (typeof impactKeys)[number];
 /** Null where a season has none to tell. */
 export type SeasonImpact = Record<ImpactKey, number | null> & { season: number };
-/** `readsSince` is the first day on which a read was counted. */
+/** `readsSince` is the first day on which a read was counted, `filesSince` that of a file taken from the open pages. */
 export type Impact = {
 	seasons: SeasonImpact[];
-	now: { subscribers: number; members: number; readsSince: string | null };
+	now: { subscribers: number; members: number; readsSince: string | null; filesSince: string | null };
 };
 export const impactNowKeys = ["subscribers", "members"] as const;

@@ -1,6 +1,7 @@
 import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test, vi } from "vitest";
 import { countRead, flushReads } from "#app/auth/report-reads.server.ts";
+import { countTaken, flushTaken } from "#app/auth/taken-files.server.ts";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Coordinator } from "#app/auth/viewer.ts";
 import { readImpact } from "#app/jobs/impact.server.ts";
@@ -113,6 +114,37 @@ test("what stands counts counties; withdrawn figures show none; the coordinator 
 	});
 	expect(seen).toEqual([]);
 	expect(await count(owner, "collect.frame_operation")).toBeGreaterThan(0);
+});
+
+test("files taken from the open pages add up by day and file: whole ones, by people, and nothing of who took them", async () => {
+	const { releaseId } = await addRelease(owner, 2029);
+	const take = (status: number, init: RequestInit = {}, agent = browser) =>
+		countTaken(
+			new Request("https://survey.example/api/v1/releases/1/files/cells.csv", {
+				...init,
+				headers: { "user-agent": agent },
+			}),
+			new Response(null, { status }),
+			releaseId,
+			"cells.csv",
+		);
+	take(200);
+	take(200);
+	// Looked at first, asked again whether it is the same, gone on with, and not had at all.
+	take(200, { method: "HEAD" });
+	take(304);
+	take(206);
+	take(416);
+	take(200, {}, "Examplebot/2.1 (+https://bot.example/)");
+	take(200, {}, "");
+	await flushTaken();
+	take(200);
+	await flushTaken();
+	expect(await ofSeason(2029)).toMatchObject({ downloads: 3 });
+	const { rows } = await owner.query("select to_jsonb(t) as row from readership.file_taken t");
+	expect(rows.map(({ row }) => [row.file_name, row.times])).toEqual([["cells.csv", 3]]);
+	expect(Object.keys(rows[0].row).toSorted()).toEqual(["file_name", "release_id", "taken_on", "times"]);
+	expect((await impact()).now.filesSince).toBe(rows[0].row.taken_on);
 });
 
 test("subscribers, members, mails and downloads are those that are there", async () => {

@@ -1,6 +1,7 @@
 import type { Route } from "./+types/file";
 import { requireResearcher } from "#app/auth/guard.server.ts";
 import { recordDownload } from "#app/auth/research-access.server.ts";
+import { wasTaken } from "#app/auth/taken-files.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { findRelease } from "#app/publish/releases.server.ts";
 import { listFiles } from "#app/publish/release-files.server.ts";
@@ -20,8 +21,6 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 
 	const name = savedName(release.number, file.name);
 	const response = await serveFile(request, release.releaseId, file, { name, visibility: "private" });
-	if (response.status === 200 || response.status === 206) {
-		await recordDownload(researcher, [release.releaseId], file.name);
-	}
+	if (wasTaken(request, response)) await recordDownload(researcher, [release.releaseId], file.name);
 	return response;
 }

@@ -1,6 +1,7 @@
 import type { Route } from "./+types/table-file";
 import { requireResearcher } from "#app/auth/guard.server.ts";
 import { recordDownload } from "#app/auth/research-access.server.ts";
+import { wasTaken } from "#app/auth/taken-files.server.ts";
 import { getInstance } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -33,10 +34,8 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const etag = `"${sha256(file.content)}"`;
 	const headers = { etag, "cache-control": "private, max-age=300" };
 	if (matches(request.headers.get("if-none-match"), etag)) return new Response(null, { status: 304, headers });
-	const releaseIds = source.parts.map(({ release }) => release.releaseId);
-	await recordDownload(researcher, releaseIds, `table ${params.file}`);
 	const name = file.name.endsWith(".zip") ? file.name : `${source.name}-${file.name}`;
-	return new Response(file.content as BodyInit, {
+	const response = new Response(request.method === "HEAD" ? null : (file.content as BodyInit), {
 		headers: {
 			...headers,
 			"content-type": file.mediaType,
@@ -44,4 +43,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 			"content-disposition": `attachment; filename="${name}"`,
 		},
 	});
+	const releaseIds = source.parts.map(({ release }) => release.releaseId);
+	if (wasTaken(request, response)) await recordDownload(researcher, releaseIds, `table ${params.file}`);
+	return response;
 }

@@ -54,6 +54,7 @@ export default function ImpactPage({ loaderData }: Route.ComponentProps) {
 			</Section>
 			<p className="mt-6 max-w-prose text-sm text-quiet">
 				{now.readsSince ? t("impact.since", { day: format.day(now.readsSince) }) : t("impact.noReads")}
+				{now.filesSince && ` ${t("impact.filesSince", { day: format.day(now.filesSince) })}`}
 			</p>
 		</Page>
 	);

@@ -1,4 +1,5 @@
 import type { Route } from "./+types/file";
+import { countTaken } from "#app/auth/taken-files.server.ts";
 import { operations } from "#app/publish/api/operations.ts";
 import { ApiProblem } from "#app/publish/api/problem.ts";
 import { listFiles } from "#app/publish/release-files.server.ts";
@@ -15,7 +16,9 @@ export function loader(args: Route.LoaderArgs) {
 		const file = files.find(({ name }) => name === params.file);
 		if (!file) throw new ApiProblem("file_not_found");
 		const name = savedName(release.number, file.name);
-		return { response: await serveFile(request, release.releaseId, file, { name, visibility: "public" }) };
+		const response = await serveFile(request, release.releaseId, file, { name, visibility: "public" });
+		countTaken(request, response, release.releaseId, file.name);
+		return { response };
 	});
 }
 export const action = loader;

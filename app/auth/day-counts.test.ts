@@ -1,5 +1,5 @@
 import { expect, test } from "vitest";
-import { isReader } from "./report-reads.server.ts";
+import { isReader } from "./day-counts.server.ts";
 
 const asked = (headers: Record<string, string>, method = "GET") =>
 	isReader(new Request("https://survey.example/reports/plums-2026", { method, headers }));
