@@ -1,8 +1,11 @@
 import { matches } from "./cached-json.server.ts";
 import { type FileFacts, readFilePart } from "./release-files.server.ts";
 
-/** A release's file may be kept a while, and not for ever: what is withdrawn must soon be served by nobody. */
-const caching = "max-age=300";
+/**
+ * A release's file may be kept a while, and not for ever: what is withdrawn must soon be served by nobody. Nobody on the way
+ * may pack it (RFC 9111, section 5.2.2.6): tag, checksum and parts are those of its bytes as they are kept.
+ */
+const caching = "max-age=300, no-transform";
 
 /**
  * A file of a release, whole or in part (RFC 9110, sections 13 and 14), with the checksum it was kept under as its tag.
@@ -23,7 +26,10 @@ export async function serveFile(
 		"content-disposition": `attachment; filename="${name}"`,
 		"repr-digest": `sha-256=:${Buffer.from(file.sha256, "hex").toString("base64")}:`,
 	});
-	if (matches(request.headers.get("if-none-match"), etag)) return new Response(null, { status: 304, headers });
+	if (matches(request.headers.get("if-none-match"), etag)) {
+		for (const unchanged of ["content-type", "content-disposition", "repr-digest"]) headers.delete(unchanged);
+		return new Response(null, { status: 304, headers });
+	}
 
 	const part = askedPart(request, etag, file.byteCount);
 	if (part === "outside") {

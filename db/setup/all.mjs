@@ -11,7 +11,8 @@ import { startService, waitFor } from "./services.mjs";
 import { seconds, step, Stop } from "./steps.mjs";
 
 const withTypes = (file) => ["--import", "tsx", file];
-const server = ["node_modules/@react-router/serve/bin.js", "./build/server/index.js"];
+// Room for an address with thousands of filters, so that the API can say what is wrong with it.
+const server = ["--max-http-header-size=131072", "node_modules/@react-router/serve/bin.js", "./build/server/index.js"];
 
 async function beginAlone(caller) {
 	const leftovers = await claim(caller.baseUrl);

@@ -102,7 +102,7 @@ const templateOf = (path: string) => path.replace(ids[0], ids[1]).replace(/\/fil
 async function meetsContract(path: string, method: string, response: Response): Promise<void> {
 	if (method !== "GET" || response.status === 304) return;
 	const type = response.headers.get("content-type")?.split(";")[0] ?? "";
-	if (response.status >= 400 && response.status !== 416) {
+	if (response.status >= 400) {
 		expect(type).toBe("application/problem+json");
 		const body = (await response.json()) as Problem;
 		expect(body.status).toBe(response.status);
@@ -282,12 +282,14 @@ describe("a request that is wrong gets told which parameter, and what would be r
 		["an unknown measure", "/cells?measure=nope", 400, "measure", ["crop_loss", "yield_per_tree", "first_bloom.day"]],
 		["a malformed measure", "/cells?measure=Crop%20Loss!", 400, "measure", /An example of one: crop_loss/],
 		["an unknown crop", "/cells?crop=apple,mango", 400, "crop", ["apple", "plum"]],
-		["an unknown area", "/cells?area=99999", 400, "area", /not known/],
+		["an unknown area", "/cells?area=99999,19103", 400, "area", /99999.*\/releases\/\d+\/areas/],
 		["a state in words", "/cells?state=Iowa", 400, "state", /An example of one: 19/],
 		["an unknown kind", "/cells?kind=village", 400, "kind", ["county", "district", "state", "region"]],
 		["an unknown status", "/cells?status=W", 400, "status", ["A", "Q", "M", "N", "O"]],
 		["ten thousand filters", `/cells?area=${many}`, 400, "area", /at most 100 values/],
 		["an absurd size", "/cells?limit=99999999999", 400, "limit", /from 1 to 10000/],
+		["a size in another way of writing", "/cells?limit=1e2", 400, "limit", /from 1 to 10000/],
+		["a size with a space", "/cells?limit=%2010", 400, "limit", /from 1 to 10000/],
 		["no size", "/cells?limit=0", 400, "limit", /from 1 to 10000/],
 		["a size in words", "/cells?limit=all", 400, "limit", /from 1 to 10000/],
 		["two sizes", "/cells?limit=1&limit=2", 400, "limit", /once/],
@@ -313,6 +315,18 @@ describe("a request that is wrong gets told which parameter, and what would be r
 			expect(await problem(of(`/cells?${query}`))).toMatchObject({ status: 400, errors: [{ parameter: "cursor" }] });
 		}
 		expect((await get(of(`/cells?limit=3&cursor=${cursor}`))).status).toBe(200);
+	});
+
+	test("a part of a file that the file does not have, which nobody on the way may pack", async () => {
+		const told = await get(of("/files/cells.csv"), { headers: { range: "bytes=99999999-" } });
+		const { bytes } = (await page(of("/files"))).data.find(({ name }) => name === "cells.csv")!;
+		expect([told.status, told.headers.get("content-range")]).toEqual([416, `bytes */${bytes}`]);
+		expect(await told.json()).toMatchObject({
+			errors: [{ parameter: "range", detail: expect.stringContaining(`${Number(bytes) - 1}`) as string }],
+		});
+		const part = await get(of("/files/cells.csv"), { headers: { range: "bytes=0-4" } });
+		expect([part.status, await part.text()]).toEqual([206, "relea"]);
+		expect(part.headers.get("cache-control")).toContain("no-transform");
 	});
 
 	test("a release that is not there, is no number, or an address that is not there", async () => {
@@ -425,6 +439,10 @@ describe("keys", () => {
 		const headers = { "x-forwarded-for": "192.0.2.7" };
 		const ask = (at: string) => get(at, { headers, method: "HEAD" });
 		for (let asked = 0; asked < apiLimits.open; asked++) await ask("");
+		// Who tries keys has no more tries than who has none.
+		expect((await get("", { headers: { ...headers, authorization: `Bearer tally_${"y".repeat(43)}` } })).status).toBe(
+			429,
+		);
 		const refused = await ask("");
 		expect(refused.status).toBe(429);
 		expect(Number(refused.headers.get("retry-after"))).toBeGreaterThan(0);

@@ -24,7 +24,7 @@ const programs: Record<ProgramName, string[]> = {
 	mail: ["--import", "tsx", "fakes/mail/server.ts"],
 	signIn: ["--import", "tsx", "fakes/sign-in/server.ts"],
 	worker: ["--import", "tsx", "app/jobs/worker.ts"],
-	server: ["node_modules/@react-router/serve/bin.js", "build/server/index.js"],
+	server: ["--max-http-header-size=131072", "node_modules/@react-router/serve/bin.js", "build/server/index.js"],
 };
 
 /**
@@ -69,7 +69,8 @@ export async function startStack(
 	};
 
 	async function start(name: ProgramName): Promise<void> {
-		const script = name === "server" ? [programs.server[0]!, options.build ?? programs.server[1]!] : programs[name];
+		const script =
+			name === "server" && options.build ? [...programs.server.slice(0, -1), options.build] : programs[name];
 		const child = spawn(process.execPath, script, { env, stdio: ["ignore", "pipe", "pipe"] });
 		children.set(name, child);
 		for (const stream of [child.stdout, child.stderr]) {

@@ -37,7 +37,6 @@ function operationOf(id: OperationId, operation: Operation, site: string, t: TFu
 			304: { description: t("dataroom:api.answer.304") },
 			...(operation.body === null && {
 				206: { description: t("dataroom:api.answer.206"), content: contentOf(operation) },
-				416: { description: t("dataroom:api.answer.416") },
 			}),
 			...Object.fromEntries(refusalsOf(operation, site, t)),
 		},
@@ -102,7 +101,7 @@ const anywhere: ProblemCode[] = [
 function refusalsOf({ path, body }: Operation, site: string, t: TFunction): [number, Json][] {
 	const codes: ProblemCode[] = [...anywhere];
 	if (path.includes("{release}")) codes.push("release_not_found", "release_withdrawn");
-	if (body === null) codes.push("files_not_ready", "file_not_found");
+	if (body === null) codes.push("files_not_ready", "file_not_found", "range_outside");
 	return [...groupBy(codes, (code) => problemStatus[code])].map(([status, alike]) => [
 		status,
 		{

@@ -11,6 +11,12 @@ const code = (pattern: RegExp, example: string) =>
 		.string()
 		.regex(pattern)
 		.meta({ examples: [example] });
+/** Digits and nothing else, so that no other way of writing a number makes a second address of the same. */
+const whole = (least: number, most: number) =>
+	z.preprocess(
+		(text) => (typeof text === "string" ? (/^(0|[1-9]\d{0,9})$/.test(text) ? Number(text) : Number.NaN) : text),
+		z.number().int().min(least).max(most),
+	);
 const several = <S extends z.ZodType>(one: S) => z.array(one).min(1).max(mostValues).optional();
 
 const measure = code(/^[a-z][a-z0-9_.]{0,79}$/, "crop_loss");
@@ -19,11 +25,7 @@ const area = code(/^[A-Za-z0-9][A-Za-z0-9_-]{0,59}$/, "19103");
 const state = code(/^\d{2}$/, "19");
 
 const paging = {
-	limit: z.coerce
-		.number()
-		.int()
-		.min(1)
-		.max(mostRows)
+	limit: whole(1, mostRows)
 		.default(usualRows)
 		.meta({ examples: [100] }),
 	cursor: z
@@ -33,12 +35,7 @@ const paging = {
 };
 
 export const path = {
-	release: z.coerce
-		.number()
-		.int()
-		.min(1)
-		.max(2_147_483_647)
-		.meta({ examples: [1] }),
+	release: whole(1, 2_147_483_647).meta({ examples: [1] }),
 	file: code(/^[A-Za-z0-9][A-Za-z0-9._-]{0,99}$/, "cells.csv"),
 };
 
@@ -46,14 +43,7 @@ export const path = {
 export const queries = {
 	none: z.strictObject({}),
 	releases: z.strictObject({
-		season: several(
-			z.coerce
-				.number()
-				.int()
-				.min(1900)
-				.max(9999)
-				.meta({ examples: [2025] }),
-		),
+		season: several(whole(1900, 9999).meta({ examples: [2025] })),
 		state: several(z.enum(["current", "replaced", "withdrawn"])),
 		...paging,
 	}),

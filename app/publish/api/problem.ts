@@ -14,6 +14,7 @@ export const problemStatus = {
 	method_not_allowed: 405,
 	not_acceptable: 406,
 	release_withdrawn: 410,
+	range_outside: 416,
 	too_many_requests: 429,
 	files_not_ready: 503,
 } as const;
@@ -22,7 +23,16 @@ export type ProblemCode = keyof typeof problemStatus;
 /** Why one parameter was not understood. The words are `dataroom:api.wrong.<code>`. */
 export type Wrong = {
 	parameter: string;
-	code: "unknown_parameter" | "malformed" | "too_many" | "twice" | "unknown_code" | "out_of_range" | "cursor";
+	code:
+		| "unknown_parameter"
+		| "malformed"
+		| "too_many"
+		| "twice"
+		| "unknown_code"
+		| "unknown_listed"
+		| "out_of_range"
+		| "cursor"
+		| "range";
 	values?: Record<string, string | number>;
 	allowed?: readonly string[];
 };

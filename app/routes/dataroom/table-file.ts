@@ -32,7 +32,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	if (!file) throw refusal("page_not_found");
 
 	const etag = `"${sha256(file.content)}"`;
-	const headers = { etag, "cache-control": "private, max-age=300" };
+	const headers = { etag, "cache-control": "private, max-age=300, no-transform" };
 	if (matches(request.headers.get("if-none-match"), etag)) return new Response(null, { status: 304, headers });
 	const name = file.name.endsWith(".zip") ? file.name : `${source.name}-${file.name}`;
 	const response = new Response(request.method === "HEAD" ? null : (file.content as BodyInit), {

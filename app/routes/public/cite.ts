@@ -5,10 +5,11 @@ import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { problem } from "#app/publish/cached-json.server.ts";
 import { bibtex, ris } from "#app/publish/citation.ts";
+import { ReleaseNumber } from "#app/publish/release-number.ts";
 import { findRelease } from "#app/publish/releases.server.ts";
 
 const Address = z.object({
-	release: z.coerce.number().int().positive().max(2_147_483_647),
+	release: ReleaseNumber,
 	format: z.enum(["bib", "ris"]),
 });
 const types = { bib: "application/x-bibtex; charset=utf-8", ris: "application/x-research-info-systems; charset=utf-8" };

@@ -9,17 +9,17 @@ import { Paging } from "#app/components/paging.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { listCellChanges } from "#app/publish/cell-changes.server.ts";
+import { ReleaseNumber } from "#app/publish/release-number.ts";
 import { findRelease, listEditions, listMeasures } from "#app/publish/releases.server.ts";
 import { ChangesTable } from "./parts/release/changes-table.tsx";
 import { ReleaseNotice } from "#app/components/release/release-state.tsx";
 
-const Number = z.coerce.number().int().positive().max(2_147_483_647);
 const PageNumber = z.coerce.number().int().min(1).max(100_000).catch(1);
 const pageSize = 100;
 
 /** What a release tells otherwise than the edition before it. A first edition has no such page. */
 export async function loader({ params, request }: Route.LoaderArgs) {
-	const number = Number.safeParse(params.release);
+	const number = ReleaseNumber.safeParse(params.release);
 	const release = number.success ? await findRelease(number.data) : undefined;
 	if (!release || release.edition === 1) throw refusal("release_not_found");
 	const editions = await listEditions(release.seriesId);

@@ -1,6 +1,5 @@
 import { useTranslation } from "react-i18next";
 import { href, Link } from "react-router";
-import { z } from "zod";
 import type { Route } from "./+types/data-release";
 import { ButtonLink } from "#app/components/button.tsx";
 import { Page } from "#app/components/page.tsx";
@@ -16,6 +15,7 @@ import { findAskedForm } from "#app/publish/asked-form.server.ts";
 import { dcatDataset, schemaOrgDataset } from "#app/publish/catalogue-record.ts";
 import { findChanges } from "#app/publish/changes.server.ts";
 import { listFiles } from "#app/publish/release-files.server.ts";
+import { ReleaseNumber } from "#app/publish/release-number.ts";
 import type { Release } from "#app/publish/release.ts";
 import {
 	countCells,
@@ -37,11 +37,10 @@ import { ReleaseFacts } from "./parts/release/release-facts.tsx";
 import { ReleaseFiles } from "./parts/release/release-files.tsx";
 import { previewColumns, type PreviewRow, ReleasePreview } from "./parts/release/release-preview.tsx";
 
-const Number = z.coerce.number().int().positive().max(2_147_483_647);
 const previewRows = 8;
 
 export async function loader({ context, params }: Route.LoaderArgs) {
-	const number = Number.safeParse(params.release);
+	const number = ReleaseNumber.safeParse(params.release);
 	const release = number.success ? await findRelease(number.data) : undefined;
 	if (!release) throw refusal("release_not_found");
 	const { releaseId } = release;

@@ -14,19 +14,22 @@ export function loader(args: Route.LoaderArgs) {
 		const { measure, crop, area, state } = asked.query;
 		if (measure)
 			requireKnown(
+				asked.request,
 				"measure",
 				measure,
 				(await listMeasures(releaseId)).map(({ key }) => key),
 			);
-		if (crop) requireKnown("crop", crop, await listCrops(releaseId));
+		if (crop) requireKnown(asked.request, "crop", crop, await listCrops(releaseId));
 		if (area || state) {
 			const areas = await listAreas(releaseId);
 			requireKnown(
+				asked.request,
 				"area",
 				area,
 				areas.map(({ key }) => key),
 			);
 			requireKnown(
+				asked.request,
 				"state",
 				state,
 				areas.flatMap(({ kind, key }) => (kind === "state" ? [key] : [])),

@@ -17,6 +17,13 @@ export function loader(args: Route.LoaderArgs) {
 		if (!file) throw new ApiProblem("file_not_found");
 		const name = savedName(release.number, file.name);
 		const response = await serveFile(request, release.releaseId, file, { name, visibility: "public" });
+		const outside = response.headers.get("content-range");
+		if (response.status === 416 && outside)
+			throw new ApiProblem(
+				"range_outside",
+				[{ parameter: "range", code: "range", values: { last: file.byteCount - 1 } }],
+				{ "content-range": outside, "accept-ranges": "bytes" },
+			);
 		countTaken(request, response, release.releaseId, file.name);
 		return { response };
 	});

@@ -8,10 +8,11 @@ import { requireKnown, standingRelease } from "./parts/list-answer.server.ts";
 
 /** The outlines of a release's areas of one kind, to join figures to by `area_code`. Public geography, no figure. */
 export function loader(args: Route.LoaderArgs) {
-	return answer(operations.geometry, args, async ({ params, query: { kind, state } }) => {
+	return answer(operations.geometry, args, async ({ request, params, query: { kind, state } }) => {
 		const { releaseId } = await standingRelease(params.release);
 		const areas = await listAreas(releaseId);
 		requireKnown(
+			request,
 			"state",
 			state,
 			areas.flatMap((area) => (area.kind === "state" ? [area.key] : [])),

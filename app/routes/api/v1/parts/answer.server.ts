@@ -36,13 +36,15 @@ export type Asked<O extends Operation> = {
  */
 export type Answer = { response: Response } | { version: string; body(): Promise<MadeBody> };
 
+const methods = "GET, HEAD, OPTIONS";
 const open = {
 	"access-control-allow-origin": "*",
 	"access-control-expose-headers": "etag, link, ratelimit, ratelimit-policy, retry-after, content-range, repr-digest",
 };
 const preflight = {
 	...open,
-	"access-control-allow-methods": "GET, HEAD, OPTIONS",
+	allow: methods,
+	"access-control-allow-methods": methods,
 	"access-control-allow-headers": "authorization, if-none-match, range, if-range, accept",
 	"access-control-max-age": "86400",
 };
@@ -57,11 +59,14 @@ export async function answer<O extends Operation>(
 	const headers: Record<string, string> = { ...open, vary: "accept, accept-language, authorization" };
 	try {
 		if (request.method !== "GET" && request.method !== "HEAD")
-			throw new ApiProblem("method_not_allowed", [], { allow: "GET, HEAD, OPTIONS" });
-		const key = await keyOf(request, operation);
-		const counted = await countRequest(request, key);
+			throw new ApiProblem("method_not_allowed", [], { allow: methods });
+		// Whoever tries keys is counted by address, as one without any.
+		const key = await keyOf(request, operation).catch((problem: unknown) => problem as ApiProblem);
+		const refusedKey = key instanceof Error;
+		const counted = await countRequest(request, refusedKey ? null : key);
 		Object.assign(headers, counted.headers);
 		if (!counted.allowed) throw new ApiProblem("too_many_requests");
+		if (refusedKey) throw key;
 		const understood = readRequest(operation, params, new URL(request.url).searchParams);
 		const type = typeOf(request, operation);
 		const instance = getInstance(context);

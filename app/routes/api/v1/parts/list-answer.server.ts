@@ -62,9 +62,21 @@ function nextAddress(request: Request, cursor: string): string {
 	return `${env().BASE_URL}${pathname}?${searchParams}`;
 }
 
-/** @throws ApiProblem 400 for a code that the release does not have, with those that it has. */
-export function requireKnown(parameter: string, given: readonly string[] | undefined, known: readonly string[]): void {
+/** So many of the codes that are not known are told back. */
+const mostTold = 5;
+
+/** @throws ApiProblem 400 for codes that the release does not have, with where those are listed that it has. */
+export function requireKnown(
+	request: Request,
+	parameter: "measure" | "crop" | "area" | "state",
+	given: readonly string[] | undefined,
+	known: readonly string[],
+): void {
 	const listed = new Set(known);
-	if (given?.some((code) => !listed.has(code)))
-		throw new ApiProblem("bad_parameter", [{ parameter, code: "unknown_code", allowed: known }]);
+	const unknown = given?.filter((code) => !listed.has(code)) ?? [];
+	if (unknown.length === 0) return;
+	const folder = new URL(request.url).pathname.replace(/\/[^/]+\/?$/, "");
+	const list = { measure: "measures", crop: "crops", area: "areas", state: "areas?kind=state" }[parameter];
+	const values = { given: unknown.slice(0, mostTold).join(", "), list: `${env().BASE_URL}${folder}/${list}` };
+	throw new ApiProblem("bad_parameter", [{ parameter, code: "unknown_listed", values, allowed: known }]);
 }
