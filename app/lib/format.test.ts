@@ -13,7 +13,7 @@ function countMade(doing: () => void): number {
 				return Reflect.construct(target as typeof Intl.NumberFormat, given);
 			},
 		});
-	const makers = ["NumberFormat", "DateTimeFormat", "ListFormat", "Collator"] as const;
+	const makers = ["NumberFormat", "DateTimeFormat", "ListFormat", "Collator", "PluralRules"] as const;
 	vi.stubGlobal("Intl", Object.fromEntries(makers.map((name) => [name, counted(Intl[name])])));
 	try {
 		doing();
@@ -38,8 +38,8 @@ test("a page that tells of thousands of figures makes each of its formatters onc
 	// A copy of the module of its own: the other tests of the run share the one they import.
 	vi.resetModules();
 	const { formatterFor: unused } = await import("./format.ts");
-	// Numbers without and with a decimal, days with and without a year, a list, and the order of names.
-	expect(countMade(() => tellFigures(unused))).toBe(6);
+	// Numbers without and with a decimal, days with and without a year, a list, plurals, and the order of names.
+	expect(countMade(() => tellFigures(unused))).toBe(7);
 	expect(countMade(() => tellFigures(unused))).toBe(0);
 });
 

@@ -1,5 +1,6 @@
 import type { TFunction } from "i18next";
 import { dateOfDay } from "./day-of-year.ts";
+import { onceEach, sentencePattern } from "./sentence-pattern.ts";
 
 /** Units of published figures, and those in which growers tell their answers. */
 export type Unit =
@@ -36,6 +37,7 @@ const dateFormat = (locale: string, options: Intl.DateTimeFormatOptions) =>
 	kept(nameOf("date", locale, options), () => new Intl.DateTimeFormat(locale, options));
 const listFormat = (locale: string) =>
 	kept(`list ${locale}`, () => new Intl.ListFormat(locale, { type: "conjunction" }));
+const pluralRules = (locale: string) => kept(`plural ${locale}`, () => new Intl.PluralRules(locale));
 const collator = (locale: string) => kept(`collator ${locale}`, () => new Intl.Collator(locale, { numeric: true }));
 
 /**
@@ -48,8 +50,14 @@ export function formatterFor(language: string, t: TFunction) {
 		numberFormat(locale, { minimumFractionDigits: decimals, maximumFractionDigits: decimals }).format(value);
 	const date = (value: Date | string, options: Intl.DateTimeFormatOptions) =>
 		dateFormat(locale, options).format(typeof value === "string" ? new Date(value) : value);
+	// A unit's words depend on the number by its plural alone.
+	const withUnit = onceEach((unit: Unit) =>
+		onceEach((plural: Intl.LDMLPluralRule, count: number) =>
+			sentencePattern(["value"], ({ value }) => t(`common:unit.${unit}`, { value, count })),
+		),
+	);
 	const quantity = (value: number, unit: Unit, decimals = 0) =>
-		t(`common:unit.${unit}`, { value: number(value, decimals), count: value });
+		withUnit(unit)(pluralRules(locale).select(value), value)({ value: number(value, decimals) });
 	/** "April 24", never broken over two lines; a day that the year does not have stays a number. */
 	const dayOfSeason = (day: number, season: number) => {
 		const on = dateOfDay(season, day);

@@ -1,6 +1,7 @@
-import { geoConicEqualArea, geoMercator, geoPath } from "d3-geo";
+import { type GeoContext, geoConicEqualArea, geoMercator, geoPath, type GeoPermissibleObjects } from "d3-geo";
 import type { FeatureCollection } from "geojson";
 import { countyFeatures, stateLines } from "#app/lib/geography/counties.ts";
+import { shortPath } from "#app/lib/geography/short-path.ts";
 import { usTopology } from "#app/lib/geography/topology.server.ts";
 import { middleOf, planar } from "./geometry.server.ts";
 
@@ -35,14 +36,15 @@ function draw(states: string[], focus: string | null): Picture {
 	const features = countyFeatures(topology, states, 4);
 	const counties: FeatureCollection = { type: "FeatureCollection", features: features.features.map(planar) };
 	const { projection, height } = projected(counties, focus);
-	// Whole units are a quarter of a line's width on a screen, and half the bytes.
-	const path = geoPath(projection).digits(0);
-	const outlines = counties.features.map((county) => ({ fips: String(county.id), outline: path(county) ?? "" }));
+	// Whole units are a quarter of a line's width on a screen.
+	const path = (shape: GeoPermissibleObjects) =>
+		shortPath((context) => geoPath(projection, context as GeoContext)(shape));
+	const outlines = counties.features.map((county) => ({ fips: String(county.id), outline: path(county) }));
 	return {
 		width,
 		height,
 		counties: outlines.filter(({ outline }) => outline !== ""),
-		stateLines: path(stateLines(topology, states, 4)) ?? "",
+		stateLines: path(stateLines(topology, states, 4)),
 		stateNames: states.flatMap((stateFips) => {
 			const [x, y] = (projection(middleOf(features, stateFips)) ?? [0, 0]).map(Math.round) as [number, number];
 			return x < 0 || x > width || y < 0 || y > height ? [] : [{ stateFips, x, y }];

@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import { onceEach, sentencePattern } from "#app/i18n/sentence-pattern.ts";
+import { onceEach, sentencePattern } from "#app/lib/sentence-pattern.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { FigureShape } from "#app/lib/format.ts";
 import type { DrawnCell } from "./map-data.ts";

@@ -2,11 +2,12 @@ import { expect, test } from "vitest";
 import { usTopology } from "#app/lib/geography/topology.server.ts";
 import { countyFeatures } from "#app/lib/geography/counties.ts";
 import { countyOfPin } from "#app/lib/geography/county-of-pin.server.ts";
+import { pointsOfPath } from "#app/lib/geography/short-path.ts";
 import { countyAt } from "./map-places.ts";
-import { outerEdge, pathOfEdges, ringsOfPath } from "./outer-edge.ts";
+import { outerEdge, pathOfEdges } from "./outer-edge.ts";
 
 test("the border of two squares side by side has six sides: the shared one falls away", () => {
-	const rings = ringsOfPath("M0,0L1,0L1,1L0,1ZM1,0L2,0L2,1L1,1Z");
+	const rings = pointsOfPath("M0,0l1,0 0,1 -1,0zM1,0l1,0 0,1 -1,0z");
 	const edges = outerEdge(rings);
 	expect(edges).toHaveLength(6);
 	expect(pathOfEdges(edges)).not.toContain("M1,0L1,1");

@@ -23,21 +23,5 @@ function keyOf(from: Point, to: Point): string {
 	return a < b ? `${a} ${b}` : `${b} ${a}`;
 }
 
-/** The rings of a path made of M, L and Z, as the server draws outlines. */
-export function ringsOfPath(path: string): Point[][] {
-	return path
-		.split("M")
-		.filter(Boolean)
-		.map((ring) =>
-			ring
-				.replace(/Z/g, "")
-				.split("L")
-				.map((pair): Point => {
-					const [x = 0, y = 0] = pair.split(",").map(Number);
-					return [x, y];
-				}),
-		);
-}
-
 export const pathOfEdges = (edges: Edge[]): string =>
 	edges.map(([from, to]) => `M${from.join()}L${to.join()}`).join("");

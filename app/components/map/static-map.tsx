@@ -4,7 +4,8 @@ import { useTranslation } from "react-i18next";
 import { classes as classNames } from "#app/components/classes.ts";
 import { fillOf } from "./fills.ts";
 import type { DrawnCell, DrawnClass, DrawnHue } from "./map-data.ts";
-import { outerEdge, pathOfEdges, ringsOfPath } from "./outer-edge.ts";
+import { pointsOfPath } from "#app/lib/geography/short-path.ts";
+import { outerEdge, pathOfEdges } from "./outer-edge.ts";
 import { MapPatterns } from "./patterns.tsx";
 
 export type DrawnPicture = {
@@ -37,7 +38,7 @@ export const StaticMap = memo(function StaticMap({ label, selected, framed, ...d
 	const id = useId();
 	const { picture, areaOfCounty } = drawn;
 	const chosen = picture.counties.filter(({ fips }) => selected && areaOfCounty[fips] === selected);
-	const border = pathOfEdges(outerEdge(chosen.flatMap(({ outline }) => ringsOfPath(outline))));
+	const border = pathOfEdges(outerEdge(chosen.flatMap(({ outline }) => pointsOfPath(outline))));
 	return (
 		<svg
 			viewBox={`0 0 ${picture.width} ${picture.height}`}

@@ -1,7 +1,8 @@
 import { useId } from "react";
 import { useTranslation } from "react-i18next";
 import type { DrawnPicture } from "#app/components/map/static-map.tsx";
-import { outerEdge, pathOfEdges, ringsOfPath } from "#app/components/map/outer-edge.ts";
+import { pointsOfPath } from "#app/lib/geography/short-path.ts";
+import { outerEdge, pathOfEdges } from "#app/components/map/outer-edge.ts";
 import { MapPatterns } from "#app/components/map/patterns.tsx";
 import "#app/components/map/map.css";
 
@@ -49,7 +50,7 @@ export function DistrictMap({
 				{grouping.districts.map(({ name, counties }) => (
 					<path
 						key={name}
-						d={pathOfEdges(outerEdge(counties.flatMap((fips) => ringsOfPath(outlineOf.get(fips) ?? ""))))}
+						d={pathOfEdges(outerEdge(counties.flatMap((fips) => pointsOfPath(outlineOf.get(fips) ?? ""))))}
 						className="map-states"
 					/>
 				))}

@@ -15,11 +15,13 @@ export function sentencePattern<Gap extends string>(
 /** In no text that a person writes. */
 const mark = "\u0000";
 
-/** What is made for a key is made once. */
-export function onceEach<Key, Value>(make: (key: Key) => Value): (key: Key) => Value {
+/** What is made for a key is made once, by the first of those that ask with it. */
+export function onceEach<Key, Value, Rest extends unknown[] = []>(
+	make: (key: Key, ...rest: Rest) => Value,
+): (key: Key, ...rest: Rest) => Value {
 	const made = new Map<Key, Value>();
-	return (key) => {
-		if (!made.has(key)) made.set(key, make(key));
+	return (key, ...rest) => {
+		if (!made.has(key)) made.set(key, make(key, ...rest));
 		return made.get(key) as Value;
 	};
 }
