@@ -21,6 +21,8 @@ export const MapQuery = z.object({
 		.optional()
 		.catch(undefined),
 	area: text,
+	/** An area's name, or some of it, as somebody typed it to find the area. */
+	find: z.string().trim().max(200).optional().catch(undefined),
 	q: z.string().trim().max(200).catch(""),
 	sort: z.enum(["area", "value", "earlier", "change"]).catch("area"),
 	direction: z.enum(["asc", "desc"]).catch("asc"),

@@ -16,6 +16,6 @@ export function namedLike<A extends { areaName: string }>(areas: A[], q: string)
 }
 
 /** Without accents and capitals, so that a search on a plain keyboard finds "Peña". */
-function plain(text: string): string {
+export function plain(text: string): string {
 	return text.normalize("NFD").replace(/\p{M}/gu, "").toLowerCase();
 }

@@ -3,7 +3,7 @@ import { useTranslation } from "react-i18next";
 import { href, redirect, useSearchParams, type ShouldRevalidateFunctionArgs } from "react-router";
 import type { Route } from "./+types/map";
 import { EmptyState } from "#app/components/empty-state.tsx";
-import { useAreaName } from "#app/components/map/area-name.ts";
+import { areaNamer, useAreaName } from "#app/components/map/area-name.ts";
 import { CountyMap } from "#app/components/map/county-map.tsx";
 import { Legend } from "#app/components/map/legend.tsx";
 import { useMapFinding } from "#app/components/map/use-map-finding.ts";
@@ -22,11 +22,13 @@ import { pictureOf } from "#app/publish/picture.server.ts";
 import { differencesOf, orderSeasonRows, pairRows } from "#app/publish/season-pair.ts";
 import { namedLike, tableRows } from "#app/publish/table-rows.ts";
 import { countedOn } from "./parts/map-counts.ts";
+import { AreaFinder } from "./parts/area-finder.tsx";
 import { MapFiles } from "./parts/map-files.tsx";
 import { MapForm } from "./parts/map-form.tsx";
 import { MapPair, type Pair } from "./parts/map-pair.tsx";
 import { MapTable } from "./parts/map-table.tsx";
 import { ReleaseNotice } from "#app/components/release/release-state.tsx";
+import { searchArea } from "./parts/search-area.ts";
 import { useChosenArea } from "./parts/use-chosen-area.ts";
 import { useViewTitle } from "./parts/use-view-title.ts";
 
@@ -42,6 +44,8 @@ export async function loader({ request, context }: Route.LoaderArgs) {
 		return { map: null };
 	}
 	const { figures, measures, states, state } = view;
+	const areas = (view.pair ?? [figures]).flatMap(({ cells }) => cells);
+	const search = searchArea(request.url, query.find, areas, areaNamer(getT(context, "common")));
 	const [picture, outlines] = [pictureOf(states, state), countiesAddress(states)];
 	if (!picture || !outlines) return { map: null };
 	const { compare } = formatterFor(getLanguage(context), getT(context, "common"));
@@ -51,6 +55,7 @@ export async function loader({ request, context }: Route.LoaderArgs) {
 		map: {
 			...figures,
 			query,
+			search,
 			measures: measures.map(({ key, label }) => ({ key, label })),
 			crops: view.crops,
 			releases: view.releases.map(({ number, season, title }) => ({ number, season, title })),
@@ -125,9 +130,10 @@ function Map({ map }: { map: MapData }) {
 		<Page title={title} lead={wordsIn(measure.description, i18n.language)}>
 			<ReleaseNotice release={release} />
 			{finding && <p className="mb-6 max-w-prose text-xl font-bold">{finding}</p>}
-			<MapForm map={map} chosen={chosen} onChoose={chooseArea} />
+			<MapForm map={map} chosen={chosen} />
 			{map.changed && <Notice tone="info">{t("map.changed", { shown: title })}</Notice>}
 			{map.besideMissing && <Notice tone="info">{t("map.two.missing", { shown: title })}</Notice>}
+			<AreaFinder kind={map.kind} areas={map.cells} chosen={chosen} search={map.search} onChoose={chooseArea} />
 			{pair ? (
 				<MapPair pair={pair} shown={map} title={title} chosen={chosen} onChoose={chooseArea} />
 			) : (

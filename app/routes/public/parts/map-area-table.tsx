@@ -36,7 +36,7 @@ export function AreaTable<Row extends Area>({
 	const { t } = useTranslation("public");
 	const areaColumn = useAreaColumn<Row>(kind, marks.onChoose);
 	const [search] = useSearchParams();
-	const kept = [...search].filter(([key]) => key !== "q" && key !== "page");
+	const kept = [...search].filter(([key]) => !["q", "page", "find"].includes(key));
 	const point = (event: FocusEvent | MouseEvent) => {
 		const row = (event.target as HTMLElement).closest("tr");
 		marks.onPoint(row?.querySelector<HTMLElement>("[data-area]")?.dataset.area ?? null);
@@ -78,6 +78,7 @@ function useAreaColumn<Row extends Area>(kind: string, onChoose: AreaTableProps<
 	const addressOf = (areaKey: string) => {
 		const next = new URLSearchParams(search);
 		next.set("area", areaKey);
+		next.delete("find");
 		return `?${next}`;
 	};
 	return {
@@ -100,7 +101,7 @@ function useAreaColumn<Row extends Area>(kind: string, onChoose: AreaTableProps<
 }
 
 /** A plain press of a row's link chooses without a navigation; with a key held it opens the view's own address. */
-function chosenHere(event: MouseEvent): boolean {
+export function chosenHere(event: MouseEvent): boolean {
 	if (event.ctrlKey || event.metaKey || event.shiftKey || event.altKey) return false;
 	event.preventDefault();
 	return true;

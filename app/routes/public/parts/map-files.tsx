@@ -8,7 +8,7 @@ export function MapFiles({ search, language }: { search: URLSearchParams; langua
 	const { t } = useTranslation("public");
 	const address = new URLSearchParams(search);
 	// What only the page has: a picture holds no table, and no area is chosen in it.
-	for (const key of ["area", "q", "sort", "direction", "page"]) address.delete(key);
+	for (const key of ["area", "find", "q", "sort", "direction", "page"]) address.delete(key);
 	address.set("lang", language);
 	return (
 		<section aria-label={t("map.files.title")} className="no-print mt-8 border-t border-rule pt-4">

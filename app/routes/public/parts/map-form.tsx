@@ -2,10 +2,7 @@ import { useTranslation } from "react-i18next";
 import { Form } from "react-router";
 import { Button } from "#app/components/button.tsx";
 import { inputClasses } from "#app/components/field-frame.tsx";
-import { useAreaName } from "#app/components/map/area-name.ts";
 import { wordsIn } from "#app/i18n/language.ts";
-import { useFormat } from "#app/i18n/use-format.ts";
-import type { MapCell } from "#app/publish/cell.ts";
 import { type ClassWay, classWays } from "#app/publish/class-steps.ts";
 import type { Words } from "#app/lib/words.ts";
 
@@ -20,27 +17,21 @@ export type MapFormData = {
 	states: string[];
 	/** The state that the map is zoomed to. */
 	state: string | null;
-	cells: MapCell[];
 	measures: { key: string; label: Words }[];
 	crops: string[];
 	releases: { number: number; season: number; title: Words }[];
 };
-type MapFormProps = { map: MapFormData; chosen: string | null; onChoose: (areaKey: string | null) => void };
+type MapFormProps = { map: MapFormData; chosen: string | null };
 
 /** Every choice of the map in one form sent by GET, so that its address reproduces the view. */
-export function MapForm({ map, chosen, onChoose }: MapFormProps) {
+export function MapForm({ map, chosen }: MapFormProps) {
 	const { t, i18n } = useTranslation("public");
-	const areaName = useAreaName();
 	const key = `${map.release.number} ${map.measure.key} ${map.cropKey} ${map.kind} ${map.beside} ${map.way} ${map.state}`;
 	const measures = map.measures.map(({ key: value, label }) => ({ value, label: wordsIn(label, i18n.language) }));
 	const releases = map.releases.map(({ number, season, title }) => ({
 		value: `${number}`,
 		label: t("map.form.release", { season, title: wordsIn(title, i18n.language), number }),
 	}));
-	const format = useFormat();
-	const areas = map.cells
-		.map((cell) => ({ value: cell.areaKey, label: areaName(cell) }))
-		.toSorted((a, b) => format.compare(a.label, b.label));
 	return (
 		<Form
 			key={key}
@@ -90,14 +81,7 @@ export function MapForm({ map, chosen, onChoose }: MapFormProps) {
 				value={map.way}
 				options={classWays.map((way) => ({ value: way, label: t(`map.form.way.${way}`) }))}
 			/>
-			<Choice
-				key={chosen}
-				name="area"
-				label={t(`map.form.area.${map.kind}`)}
-				value={chosen ?? ""}
-				options={[{ value: "", label: t("map.form.noArea") }, ...areas]}
-				onChange={(value) => onChoose(value || null)}
-			/>
+			{chosen && <input type="hidden" name="area" value={chosen} />}
 			<Button>{t("map.form.show")}</Button>
 		</Form>
 	);
@@ -108,10 +92,9 @@ type ChoiceProps = {
 	label: string;
 	value: string;
 	options: { value: string; label: string }[];
-	onChange?: (value: string) => void;
 };
 
-function Choice({ name, label, value, options, onChange }: ChoiceProps) {
+function Choice({ name, label, value, options }: ChoiceProps) {
 	return (
 		<div className="min-w-0">
 			<label htmlFor={`field-${name}`} className="block text-sm font-bold">
@@ -121,7 +104,6 @@ function Choice({ name, label, value, options, onChange }: ChoiceProps) {
 				id={`field-${name}`}
 				name={name}
 				defaultValue={value}
-				onChange={onChange && ((event) => onChange(event.target.value))}
 				className={`${inputClasses()} mt-1 w-full sm:max-w-72`}
 			>
 				{options.map((option) => (

@@ -30,6 +30,7 @@ export function useChosenArea(): [string | null, (areaKey: string | null) => voi
 function withArea(search: URLSearchParams, areaKey: string | null): string {
 	const next = new URLSearchParams(search);
 	next.delete("area");
+	next.delete("find");
 	if (areaKey) next.set("area", areaKey);
 	return next.toString();
 }
