@@ -74,6 +74,14 @@ describe("a cell's estimate", () => {
 		expect(cell.upper).toBeCloseTo(1 - 0.025 ** 0.1, 12);
 	});
 
+	test("answers that all agree have no interval, unless everybody gave one", () => {
+		const answers: [number, number][] = [[0, 100], [0, 300], [0, 50]]; // prettier-ignore
+		const cell = estimateCell({ kind: "ratio" }, strata, [tally("55.small", answers)]);
+		expect(cell).toMatchObject({ value: 0, standardError: 0, lower: null, upper: null, steadiness: "care" });
+		const whole = estimateCell({ kind: "ratio" }, strata, [tally("55.large", answers)]);
+		expect(whole).toMatchObject({ lower: 0, upper: 0 });
+	});
+
 	test("a share of all is exactly 1, also after weighting", () => {
 		const all = [tally("55.small", [[1, 1], [1, 1], [1, 1]]), tally("55.large", [[1, 1]])]; // prettier-ignore
 		const cell = estimateCell({ kind: "proportion" }, strata, all);

@@ -18,7 +18,7 @@ export type Estimate = {
 	value: number | null;
 	standardError: number | null;
 	cv: number | null;
-	/** Ends of the 95 percent interval. */
+	/** Ends of the 95 percent interval; null where there is none, as where answers of a part all agree. */
 	lower: number | null;
 	upper: number | null;
 	/** Operations of the area that answered. Owners are counted in protect. */
@@ -116,7 +116,9 @@ function intervalOf(
 	figure: Figure,
 	{ freedom, respondents }: Pick<CellParts, "freedom" | "respondents">,
 ): Interval | null {
-	return kind === "proportion" ? proportionInterval(figure, freedom, respondents) : normalInterval(figure);
+	if (kind === "proportion") return proportionInterval(figure, freedom, respondents);
+	// Answers that all agree do not prove that the others agree too: ends at the value itself would say so.
+	return figure.standardError === 0 ? null : normalInterval(figure);
 }
 
 function clip(

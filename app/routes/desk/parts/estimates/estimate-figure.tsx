@@ -11,9 +11,10 @@ type FigureProps = { figure: Figure; measure: FigureShape };
 export function FigureInterval({ figure, measure, scale }: FigureProps & { scale: BarScale }) {
 	const { t } = useTranslation("release");
 	const format = useFormat();
-	const { value, lower, upper, missing } = figure;
+	const { value, standardError, lower, upper, missing } = figure;
 	if (value === null || lower === null || upper === null) {
-		return <span className="text-xs text-quiet">{t(`estimates.noInterval.${missing ?? "no_spread"}`)}</span>;
+		const why = missing ?? (standardError === 0 ? "agreeing" : "no_spread");
+		return <span className="text-xs text-quiet">{t(`estimates.noInterval.${why}`)}</span>;
 	}
 	const words = t("estimates.likely", format.ends(lower, upper, measure));
 	return (
