@@ -174,6 +174,7 @@ export default [
 			route("reports/:reportId", "routes/desk/report.tsx"),
 			route("reports/:reportId/versions", "routes/desk/report-versions.tsx"),
 			route("reports/:reportId/photos", "routes/desk/report-photos.tsx"),
+			route("reports/:reportId/photos/:photoId", "routes/desk/report-photo-away.tsx"),
 		]),
 	]),
 
@@ -188,6 +189,7 @@ export default [
 			route("releases/:draftId", "routes/network/release.tsx"),
 			route("reports", "routes/network/reports.tsx"),
 			route("reports/:reportId", "routes/network/report.tsx"),
+			route("reports/:reportId/photos/:photoId", "routes/network/report-photo-away.tsx"),
 			route("access", "routes/network/access.tsx"),
 			route("settings", "routes/network/settings.tsx"),
 			route("impact", "routes/network/impact.tsx"),

@@ -698,12 +698,15 @@ export interface PublishReportFile {
 export interface PublishReportPhoto {
   added_at: Generated<Timestamp>;
   added_by: string;
-  bytes: Buffer;
+  bytes: Buffer | null;
   consent_of: string;
   consent_on: string;
   height_px: number;
   report_id: string;
   report_photo_id: Generated<string>;
+  taken_away_at: Timestamp | null;
+  taken_away_because: string | null;
+  taken_away_by: string | null;
   width_px: number;
 }
 

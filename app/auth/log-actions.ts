@@ -34,7 +34,17 @@ export const logActions = {
 	release: ["drafted", "cancelled", "rejected", "scheduled", "unscheduled", "published", "withdrawn"],
 	settings: ["changed"],
 	key: ["made", "revoked"],
-	report: ["started", "submitted", "sent_back", "scheduled", "unscheduled", "published", "corrected", "photo_added"],
+	report: [
+		"started",
+		"submitted",
+		"sent_back",
+		"scheduled",
+		"unscheduled",
+		"published",
+		"corrected",
+		"photo_added",
+		"photo_taken_away",
+	],
 	district: ["redrawn", "put_back"],
 	log: ["exported"],
 } as const;

@@ -18,13 +18,14 @@ const mostSeconds = 90;
  * desk to see, and the page stands without a PDF.
  */
 export async function printReport({ reportId, language }: { reportId: string; language: Language }): Promise<void> {
+	const begunAt = new Date();
 	const report = await findPublishedById(reportId);
 	if (!report) return;
 	const browser = await findBrowser();
 	const made = browser
 		? await print(browser, `${env().BASE_URL}/reports/${report.slug}?version=${report.version}`, language)
 		: ({ problem: "no_browser" } as const);
-	await scopedTransaction({ kind: "none" }, (trx) => keepReportFile(trx, reportId, language, made));
+	await scopedTransaction({ kind: "none" }, (trx) => keepReportFile(trx, reportId, language, made, begunAt));
 	if ("problem" in made) log.warn({ reportId, language, problem: made.problem }, "no PDF of a report");
 }
 

@@ -1,8 +1,11 @@
 import { logEvent } from "#app/auth/event-log.server.ts";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
+import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { languages } from "#app/i18n/language.ts";
 import { log } from "#app/lib/log.server.ts";
 import { publishScheduled } from "#app/publish/drafting/report-approval.server.ts";
+import { takePhotoAway } from "#app/publish/drafting/report-photos.server.ts";
+import type { PhotoReason } from "#app/publish/report-photo.ts";
 import { queueJob } from "./queue.server.ts";
 
 /** One job a report: a new minute takes the place of the one before. */
@@ -10,14 +13,32 @@ export const publishReportKey = (reportId: string) => `publish_report:${reportId
 
 /** What follows when a report is out, queued in the transaction that publishes it: its PDFs, then the mail to subscribers. */
 export async function queueAfterPublication(trx: Trx, reportId: string): Promise<void> {
-	for (const language of languages) {
-		await queueJob(trx, "print_report", { reportId, language }, { jobKey: `print_report:${reportId}:${language}` });
-	}
+	await queuePrinting(trx, reportId);
 	// A little later, so that the mail can point to the PDFs.
 	const runAt = new Date(Date.now() + mailDelaySeconds * 1000);
 	await queueJob(trx, "mail_report", { reportId }, { jobKey: `mail_report:${reportId}`, runAt });
 }
 const mailDelaySeconds = 30;
+
+async function queuePrinting(trx: Trx, reportId: string): Promise<void> {
+	for (const language of languages) {
+		await queueJob(trx, "print_report", { reportId, language }, { jobKey: `print_report:${reportId}:${language}` });
+	}
+}
+
+/** Takes a photo out of a report, and has what was published with it printed anew. */
+export async function takeReportPhotoAway(
+	trx: Trx,
+	viewer: Associate | Coordinator,
+	reportId: string,
+	photoId: string,
+	because: PhotoReason,
+): Promise<"taken_away" | "not_found"> {
+	const taken = await takePhotoAway(trx, viewer, reportId, photoId, because);
+	if (taken.outcome === "not_found") return "not_found";
+	for (const version of taken.printAgain) await queuePrinting(trx, version);
+	return "taken_away";
+}
 
 /** Publishes a report at the minute that its approver set. */
 export async function publishReportAtItsMinute({ reportId }: { reportId: string }): Promise<void> {

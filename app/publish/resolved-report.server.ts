@@ -10,7 +10,8 @@ import type { Release, ReleaseMeasure } from "./release.ts";
 import { findReleaseById, listAreas, listCoveredStates } from "./releases.server.ts";
 import { type EarlierFigure, lookUp, readSource, type Source, told, type Told } from "./report-source.server.ts";
 import { type ListedReport, listPublishedReports, listVersions } from "./reports.server.ts";
-import { listPhotoSizes, type PhotoSize } from "./report-photo.server.ts";
+import { listShownPhotos, type PhotoSize, type ShownPhoto } from "./report-photo.server.ts";
+import type { PhotoTakenAway } from "./report-photo.ts";
 import { type Block, type CautionKey, type DraftWords, partsOf, photosOf, type ReportContent } from "./report.ts";
 import { resolveChart, type ResolvedChart } from "./resolved-chart.server.ts";
 
@@ -37,6 +38,7 @@ export type ResolvedBlock =
 	| { id: string; type: "chart"; drawn: ResolvedChart }
 	| { id: string; type: "caution"; key: CautionKey }
 	| { id: string; type: "photo"; photo: string; alt: DraftWords; size: PhotoSize | null }
+	| { id: string; type: "photo_gone"; takenAway: PhotoTakenAway }
 	| { id: string; type: "missing" };
 export type ResolvedReport = {
 	title: ResolvedWords;
@@ -49,12 +51,15 @@ export type ResolvedReport = {
 /** A report with every reference looked up in its release, as the reader's role sees it. A withheld figure has no number. */
 export async function resolveReport(content: ReportContent, release: Release): Promise<ResolvedReport> {
 	const source = await readSource(content, release);
-	const [states, sizes] = await Promise.all([listCoveredStates(release.releaseId), listPhotoSizes(photosOf(content))]);
+	const [states, photos] = await Promise.all([
+		listCoveredStates(release.releaseId),
+		listShownPhotos(photosOf(content)),
+	]);
 	return {
 		title: resolveWords(content.title, source),
 		summary: resolveWords(content.summary, source),
 		blocks: [
-			...(await Promise.all(content.blocks.map((block) => resolveBlock(block, source, sizes)))),
+			...(await Promise.all(content.blocks.map((block) => resolveBlock(block, source, photos)))),
 			...missingCautions(content, [...source.measures.values()]).map((key): ResolvedBlock => ({
 				id: `caution-${key}`,
 				type: "caution",
@@ -66,11 +71,13 @@ export async function resolveReport(content: ReportContent, release: Release): P
 	};
 }
 
-async function resolveBlock(block: Block, source: Source, sizes: Record<string, PhotoSize>): Promise<ResolvedBlock> {
+async function resolveBlock(block: Block, source: Source, photos: Record<string, ShownPhoto>): Promise<ResolvedBlock> {
 	const { id } = block;
 	if (block.type === "photo") {
 		const { photo, alt } = block;
-		return photo ? { id, type: "photo", photo, alt, size: sizes[photo] ?? null } : { id, type: "missing" };
+		const { size = null, takenAway = null } = photos[photo] ?? {};
+		if (takenAway) return { id, type: "photo_gone", takenAway };
+		return photo ? { id, type: "photo", photo, alt, size } : { id, type: "missing" };
 	}
 	if (block.type === "caution") return { id, type: "caution", key: block.key };
 	if (block.type === "heading") return { id, type: "heading", text: resolveWords(block.text, source) };

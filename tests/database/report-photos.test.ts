@@ -1,14 +1,18 @@
+import { sql } from "kysely";
 import type { Client } from "pg";
 import sharp from "sharp";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { decideReport } from "#app/jobs/decide-report.server.ts";
+import { takeReportPhotoAway } from "#app/jobs/publish-report.server.ts";
+import { keepReportFile } from "#app/publish/drafting/report-files.server.ts";
 import { startCorrection } from "#app/publish/drafting/report-correction.server.ts";
 import { addReportPhoto, findDraftPhoto, listReportPhotos } from "#app/publish/drafting/report-photos.server.ts";
 import { findReport, saveReport, submitReport } from "#app/publish/drafting/reports.server.ts";
 import { startReport } from "#app/publish/drafting/start-report.server.ts";
 import { findReleaseById } from "#app/publish/releases.server.ts";
 import { findReportPhoto } from "#app/publish/report-photo.server.ts";
+import { findReportFile } from "#app/publish/reports.server.ts";
 import { missingWords, type ReportContent, withOwnPhotos } from "#app/publish/report.ts";
 import { resolveReport } from "#app/publish/resolved-report.server.ts";
 import { readReportPhoto } from "#app/routes/desk/parts/report-photo-form.server.ts";
@@ -165,4 +169,64 @@ test("a photo of a report whose figures were withdrawn is served to nobody, thou
 	await owner.query("alter table release.withdrawal enable trigger user");
 	await expect(served(photoId)).rejects.toMatchObject(notFound);
 	expect(await count(owner, "publish.report_photo where report_photo_id = $1", [photoId])).toBe(1);
+});
+
+const takeAway = (reportId: string, photoId: string) =>
+	desk((trx) => takeReportPhotoAway(trx, author, reportId, photoId, "consent_withdrawn"));
+const printed = { bytes: Buffer.from("%PDF-1.7 with the photo") };
+
+test("a photo taken away is gone from page, PDF and database, and its place says when and why", async () => {
+	const { reportId, releaseId, content, photoId } = await draft("Taken away");
+	const release = (await findReleaseById(releaseId))!;
+	await publish(reportId);
+	await desk((trx) => keepReportFile(trx, reportId, "es", printed));
+	expect([(await served(photoId)).status, await findReportFile(reportId, "es")]).toEqual([200, printed.bytes]);
+	await desk((trx) => sql`delete from graphile_worker._private_jobs`.execute(trx));
+
+	const begunAt = new Date();
+	expect(await takeAway(reportId, photoId)).toBe("taken_away");
+	await expect(served(photoId)).rejects.toMatchObject(notFound);
+	expect(await desk((trx) => findDraftPhoto(trx, author, photoId))).toBeUndefined();
+	expect(await count(owner, "publish.report_photo where report_photo_id = $1 and bytes is null", [photoId])).toBe(1);
+	expect(await findReportFile(reportId, "es")).toBeUndefined();
+	const { rows } = await desk((trx) =>
+		sql<{ key: string }>`select key from graphile_worker.jobs where task_identifier = 'print_report'`.execute(trx),
+	);
+	expect(rows.map(({ key }) => key).toSorted()).toEqual(["en", "es"].map((language) => `print_report:${reportId}:${language}`)); // prettier-ignore
+	const [told] = (await resolveReport(content, release)).blocks;
+	expect(told).toMatchObject({ type: "photo_gone", takenAway: { because: "consent_withdrawn" } });
+	expect(JSON.stringify(told)).not.toContain("frozen blossom");
+
+	// A print that was under way may show it still, and is not kept; the next one is.
+	await desk((trx) => keepReportFile(trx, reportId, "es", printed, begunAt));
+	expect(await findReportFile(reportId, "es")).toBeUndefined();
+	await desk((trx) => keepReportFile(trx, reportId, "es", { bytes: Buffer.from("%PDF-1.7") }));
+	expect(await findReportFile(reportId, "es")).toEqual(Buffer.from("%PDF-1.7"));
+
+	// Twice is harmless, and tells the log nothing new; nothing brings the picture back.
+	expect(await takeAway(reportId, photoId)).toBe("taken_away");
+	expect(await count(owner, "log.event where action = 'report.photo_taken_away' and subject_id = $1", [reportId])).toBe(
+		1,
+	);
+	const back = "update publish.report_photo set bytes = 'x', taken_away_at = null, taken_away_by = null, taken_away_because = null where report_photo_id = $1"; // prettier-ignore
+	await expect(owner.query(back, [photoId])).rejects.toThrow("taken away and nothing else");
+});
+
+test("a photo goes by its own report alone, by whoever approves reports too, and from all versions that show it", async () => {
+	const [one, other] = [await draft("One"), await draft("Other")];
+	await publish(one.reportId);
+	expect(await takeAway(other.reportId, one.photoId)).toBe("not_found");
+	expect((await served(one.photoId)).status).toBe(200);
+	const next = await desk((trx) => startCorrection(trx, author, one.reportId));
+	if (next.outcome !== "started") throw new Error("a published report can be corrected");
+	await desk((trx) => keepReportFile(trx, one.reportId, "en", printed));
+	const taken = await desk((trx) =>
+		takeReportPhotoAway(trx, coordinator, next.reportId, one.photoId, "shown_by_mistake"),
+	);
+	expect(taken).toBe("taken_away");
+	expect(await findReportFile(one.reportId, "en")).toBeUndefined();
+	const photos = await desk((trx) => listReportPhotos(trx, author, next.reportId));
+	expect(photos).toMatchObject([{ photoId: one.photoId, takenAway: { because: "shown_by_mistake" } }]);
+	// The other report keeps its own.
+	expect(await desk((trx) => findDraftPhoto(trx, author, other.photoId))).toBeDefined();
 });

@@ -8,6 +8,7 @@ import { bandText } from "#app/components/map/cell-words.ts";
 import { Legend } from "#app/components/map/legend.tsx";
 import { type DrawnPicture, StaticMap } from "#app/components/map/static-map.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
 import { CropTable } from "./crop-table.tsx";
 import type { ToldBlock, ToldCell, ToldMeasure } from "./report-data.ts";
 import { Passages } from "./passages.tsx";
@@ -59,6 +60,8 @@ export function ReportBlocks({ blocks, season, picture, photoAddress }: ReportBl
 						/>
 					</figure>
 				);
+			case "photo_gone":
+				return <GonePhoto key={block.id} block={block} />;
 			case "missing":
 				return (
 					<p key={block.id} className="my-4 text-quiet">
@@ -70,6 +73,17 @@ export function ReportBlocks({ blocks, season, picture, photoAddress }: ReportBl
 }
 
 type Of<T extends ToldBlock["type"]> = { block: Extract<ToldBlock, { type: T }>; season: number };
+
+/** In the place of a photo that was taken away after it was shown. */
+function GonePhoto({ block: { takenAway } }: { block: Extract<ToldBlock, { type: "photo_gone" }> }) {
+	const { t } = useTranslation("report");
+	const format = useFormat();
+	return (
+		<p className="my-6 break-inside-avoid border border-line px-4 py-3 text-quiet">
+			{t(`photos.gone.${takenAway.because}`, { date: format.dayOf(takenAway.at) })}
+		</p>
+	);
+}
 
 function useTitle() {
 	const { t, i18n } = useTranslation("public");

@@ -34,6 +34,7 @@ export type ToldBlock =
 	| { id: string; type: "chart"; drawn: ResolvedChart }
 	| { id: string; type: "caution"; key: string }
 	| { id: string; type: "photo"; photo: string; alt: Words; size: { widthPx: number; heightPx: number } | null }
+	| { id: string; type: "photo_gone"; takenAway: { at: string; because: string } }
 	| { id: string; type: "missing" };
 
 /** A report with its figures looked up, as it is shown. */

@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { photoReasons } from "../report-photo.ts";
 
 /** Who gave consent to showing a photo, when, and that the one who adds it has it from them. */
 export const PhotoConsent = z.object({
@@ -10,3 +11,6 @@ export const PhotoConsent = z.object({
 	consentGiven: z.literal("on", "agreement_needed"),
 });
 export type PhotoConsent = z.infer<typeof PhotoConsent>;
+
+/** Why a photo is taken away again. */
+export const PhotoTakeAway = z.object({ because: z.enum(photoReasons, "choice_wrong") });

@@ -13,6 +13,7 @@ import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
+import { useFormat } from "#app/i18n/use-format.ts";
 import { type Problem } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { addReportPhoto, listReportPhotos } from "#app/publish/drafting/report-photos.server.ts";
@@ -48,6 +49,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 export default function ReportPhotos({ loaderData: { report, photos }, actionData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("report");
 	const photoName = usePhotoName();
+	const format = useFormat();
 	const title = wordsIn(report.title, i18n.language) || t("public:report_editor.untitled");
 	return (
 		<Page title={t("photos.title", { title })} lead={t("photos.lead")}>
@@ -61,12 +63,30 @@ export default function ReportPhotos({ loaderData: { report, photos }, actionDat
 				<ul className="flex list-none flex-wrap gap-6">
 					{photos.map((photo, index) => (
 						<li key={photo.photoId} className="w-56 text-sm">
-							<img
-								src={href("/desk/report-photos/:photoId", { photoId: photo.photoId })}
-								alt=""
-								className="h-40 w-56 border border-line object-cover"
-							/>
-							{photoName(photo, index)}
+							{photo.takenAway ? (
+								<p className="flex h-40 w-56 items-center border border-line px-4 text-quiet">
+									{t("photos.goneLabel", { date: format.dayOf(photo.takenAway.at) })}
+								</p>
+							) : (
+								<img
+									src={href("/desk/report-photos/:photoId", { photoId: photo.photoId })}
+									alt=""
+									className="h-40 w-56 border border-line object-cover"
+								/>
+							)}
+							<p>{photoName(photo, index)}</p>
+							{!photo.takenAway && (
+								<Link
+									to={href("/desk/reports/:reportId/photos/:photoId", {
+										reportId: report.reportId,
+										photoId: photo.photoId,
+									})}
+									className="inline-flex min-h-11 items-center"
+								>
+									{t("photos.away")}
+									<span className="sr-only"> {photoName(photo, index)}</span>
+								</Link>
+							)}
 						</li>
 					))}
 				</ul>

@@ -21,6 +21,7 @@ import { resolveReport } from "#app/publish/resolved-report.server.ts";
 import { Comments } from "#app/routes/desk/parts/report-comments.tsx";
 import { ReportPreview } from "#app/routes/desk/parts/report-preview.tsx";
 import { takeComment } from "#app/routes/desk/parts/report-steps.server.ts";
+import { PhotosToTakeAway } from "./parts/photos-to-take-away.tsx";
 import { ReportDecisions, useDecisionLabels } from "./parts/report-decisions.tsx";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
@@ -108,6 +109,7 @@ export default function NetworkReport({ loaderData, actionData }: Route.Componen
 					{wordsIn(correction, i18n.language)}
 				</Notice>
 			)}
+			<PhotosToTakeAway reportId={report.reportId} blocks={told.blocks} />
 			<ReportPreview area="network" told={told} published={state === "published"} />
 			<ReportDecisions state={state} own={own} tomorrow={tomorrow} sent={actionData} />
 		</Page>

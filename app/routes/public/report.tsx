@@ -127,8 +127,9 @@ function Files({ report, files }: PartProps) {
 }
 
 /** Before any figure: that this version corrects an earlier one, how and why, or that a later one corrects it. */
-function Corrections({ report, versions }: PartProps) {
+function Corrections({ report, versions, told }: PartProps) {
 	const { t, i18n } = useTranslation("report");
+	const format = useFormat();
 	const latest = versions[0];
 	return (
 		<>
@@ -141,6 +142,14 @@ function Corrections({ report, versions }: PartProps) {
 				<Notice tone="info" title={t("versions.corrects")}>
 					{wordsIn(report.correction, i18n.language)}
 				</Notice>
+			)}
+			{told.blocks.map(
+				(block) =>
+					block.type === "photo_gone" && (
+						<Notice key={block.id} tone="info" title={t("photos.goneTitle")}>
+							{t(`photos.gone.${block.takenAway.because}`, { date: format.dayOf(block.takenAway.at) })}
+						</Notice>
+					),
 			)}
 		</>
 	);

@@ -29,7 +29,9 @@ export function PhotoFields({ block, name, label, offered: { photos }, problems 
 				problem={problems?.find(({ field }) => field === `${name}.photo`)}
 				options={[
 					{ value: "", label: t("photos.notChosen") },
-					...photos.map((photo, index) => ({ value: photo.photoId, label: photoName(photo, index) })),
+					...photos.flatMap((photo, index) =>
+						photo.takenAway ? [] : [{ value: photo.photoId, label: photoName(photo, index) }],
+					),
 				]}
 			/>
 			{block.photo && (

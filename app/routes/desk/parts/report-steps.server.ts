@@ -22,7 +22,10 @@ export async function takeEdit(desk: Access<Associate>, reportId: string, sent: 
 	const first = { measure: measures[0]?.key ?? "", crop: crops[0] ?? "all", area: "network" };
 	const photos = await desk.transaction((trx) => listReportPhotos(trx, desk.viewer, reportId));
 	const edited = applyEdit(form.value, first);
-	const content = withOwnPhotos(edited.content, new Set(photos.map(({ photoId }) => photoId)));
+	const content = withOwnPhotos(
+		edited.content,
+		new Set(photos.filter(({ takenAway }) => !takenAway).map(({ photoId }) => photoId)),
+	);
 	const { at } = edited;
 	const { verb, blockId } = form.value.intent;
 	const correction = report.version > 1 ? (form.value.correction ?? { en: "", es: "" }) : null;
