@@ -24,20 +24,21 @@ export function Chart({ drawn, season, alone }: ChartProps) {
 	const subject = useSubject(drawn, season);
 	const alternative = t(`chart.alternative.${drawn.chart}`, { finding, subject });
 	return (
-		<figure className="chart-figure my-8">
-			<figcaption className="mb-3 break-after-avoid">
-				<p className="max-w-prose text-lg font-bold">{finding}</p>
-				<p className="text-sm text-quiet">{subject}</p>
-			</figcaption>
-			<div className="chart-drawing">
+		<div className="my-8">
+			{/* Its title is printed on the sheet of the drawing; only the table may go on to the next. */}
+			<figure>
+				<figcaption className="mb-3">
+					<p className="max-w-prose text-lg font-bold">{finding}</p>
+					<p className="text-sm text-quiet">{subject}</p>
+				</figcaption>
 				<Drawing drawn={drawn} alternative={alternative} />
 				{drawn.chart === "causes" && <Key drawn={drawn} />}
 				<p className="mb-3 mt-2 max-w-prose text-sm text-quiet">
 					{t(`chart.read.${drawn.chart}`)} {isCareful(drawn) && t("chart.care")}
 				</p>
-			</div>
+			</figure>
 			{!alone && <ChartTable drawn={drawn} caption={subject} />}
-		</figure>
+		</div>
 	);
 }
 
