@@ -18,6 +18,9 @@ type RowChartProps = {
 export const chartWidth = 360;
 const [left, right] = [8, chartWidth - 8];
 const rowHeight = 44;
+/** How many letters of name and figure stand beside each other; where one row has more, all figures get a line of their own. */
+const lettersBeside = 46;
+const lineHeight = 16;
 const axisHeight = 20;
 export const bandHeight = 16;
 
@@ -28,7 +31,8 @@ export const bandHeight = 16;
 export function RowChart({ rows, scale, tickText, alternative, mark }: RowChartProps) {
 	const id = useId();
 	const x = placeOn(scale, left, right);
-	const bottom = rows.length * rowHeight;
+	const extra = rows.some(({ label, value }) => label.length + value.length > lettersBeside) ? lineHeight : 0;
+	const bottom = rows.length * (rowHeight + extra);
 	return (
 		<svg
 			viewBox={`0 0 ${chartWidth} ${bottom + axisHeight}`}
@@ -46,20 +50,20 @@ export function RowChart({ rows, scale, tickText, alternative, mark }: RowChartP
 				</g>
 			))}
 			{rows.map((row, index) => {
-				const top = index * rowHeight;
+				const top = index * (rowHeight + extra);
 				return (
 					<g key={row.key}>
 						<text x={left} y={top + 16} className="chart-text">
 							{row.label}
 						</text>
-						<text x={right} y={top + 16} className="chart-value">
+						<text x={right} y={top + extra + 16} className="chart-value">
 							{row.value}
 						</text>
 						{row.look === "number" ? (
-							mark(index, top + 22, x)
+							mark(index, top + extra + 22, x)
 						) : (
 							<rect
-								{...{ x: left, y: top + 22, width: 72, height: bandHeight }}
+								{...{ x: left, y: top + extra + 22, width: 72, height: bandHeight }}
 								fill={`url(#${id}-${row.look})`}
 								className="chart-grid"
 							/>
