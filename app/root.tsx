@@ -7,7 +7,7 @@ import { sessionContext, sessionMiddleware } from "#app/auth/session.server.ts";
 import { surveyInHandMiddleware } from "#app/auth/survey-in-hand.server.ts";
 import { visitorContext, visitorMiddleware } from "#app/auth/visitor.server.ts";
 import { RefusalPage } from "#app/components/refusal-page.tsx";
-import { type ShellData, useDemo } from "#app/components/shell-data.ts";
+import { type ShellData, useDemo, useShellData } from "#app/components/shell-data.ts";
 import { Shell } from "#app/components/shell.tsx";
 import { getInstance, getLanguage, i18nextMiddleware } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
@@ -50,7 +50,9 @@ export const links: Route.LinksFunction = () => [{ rel: "icon", href: "/favicon.
 export function Layout({ children }: { children: ReactNode }) {
 	const { i18n } = useTranslation();
 	const demo = useDemo();
-	const isBare = useMatches().some(({ handle }) => (handle as { bare?: boolean } | undefined)?.bare);
+	const told = useShellData()?.toast;
+	// What was just told can be closed, which takes scripts.
+	const isBare = useMatches().some(({ handle }) => (handle as { bare?: boolean } | undefined)?.bare) && !told;
 	return (
 		<html lang={i18n.language} dir={i18n.dir()} data-demo={demo ? "yes" : undefined}>
 			<head>

@@ -19,6 +19,9 @@ import { FindingPage, type Latest } from "./parts/home/finding-page.tsx";
 import { NextSteps } from "./parts/home/next-steps.tsx";
 import { SeasonState, WithdrawnNotice } from "./parts/home/season-state.tsx";
 
+/** Read by people on slow lines, and nothing on it needs scripts. */
+export const handle = { bare: true };
+
 export async function loader() {
 	const [every, reports, expected] = await Promise.all([listEveryRelease(), listToldReports(1), listExpected()]);
 	const release = every.find(isStanding);

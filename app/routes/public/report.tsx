@@ -22,6 +22,9 @@ import { resolveReport } from "#app/publish/resolved-report.server.ts";
 import { linkedData } from "./parts/linked-data.ts";
 import { ReleaseNotice } from "#app/components/release/release-state.tsx";
 
+/** Read by people on slow lines, and nothing on it needs scripts. */
+export const handle = { bare: true };
+
 const Version = z.coerce.number().int().positive().max(10_000).optional().catch(undefined);
 
 export async function loader({ context, params, request }: Route.LoaderArgs) {

@@ -1,7 +1,6 @@
 import { useTranslation } from "react-i18next";
 import { href, Link } from "react-router";
 import { Notice } from "#app/components/notice.tsx";
-import { useTimeZone } from "#app/components/use-time-zone.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { Expected } from "#app/publish/expected.server.ts";
@@ -11,7 +10,6 @@ import type { Release } from "#app/publish/release.ts";
 export function SeasonState({ expected }: { expected: Expected[] }) {
 	const { t, i18n } = useTranslation("site");
 	const format = useFormat();
-	const zone = useTimeZone();
 	const open = expected.filter(({ kind }) => kind === "survey_closes");
 	const soon = expected.filter(({ kind }) => kind === "release");
 	const told = ({ title, season }: Expected) => ({ title: wordsIn(title, i18n.language), season });
@@ -21,7 +19,7 @@ export function SeasonState({ expected }: { expected: Expected[] }) {
 				<Notice tone="info" title={t("state.openTitle")}>
 					{open.map((survey) => {
 						const states = format.list(survey.stateFips.map((state) => t(`common:state.${state}`)));
-						const closes = format.moment(survey.at, zone);
+						const closes = format.moment(survey.at);
 						const values = { ...told(survey), states, closes };
 						return <p key={`${values.title}${survey.at}`}>{t(states ? "state.openIn" : "state.open", values)}</p>;
 					})}
@@ -32,7 +30,7 @@ export function SeasonState({ expected }: { expected: Expected[] }) {
 				<Notice tone="attention" title={t("state.soonTitle")}>
 					{soon.map((release) => (
 						<p key={`${release.season}${release.at}`}>
-							{t("state.soon", { ...told(release), at: format.moment(release.at, zone) })}
+							{t("state.soon", { ...told(release), at: format.moment(release.at) })}
 						</p>
 					))}
 					<CalendarLink />
