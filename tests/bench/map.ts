@@ -2,7 +2,7 @@ import { type Browser, chromium, type Page } from "playwright-core";
 import { median } from "simple-statistics";
 import { listCounties } from "#app/lib/geography/counties.ts";
 import { usTopology } from "#app/lib/geography/topology.server.ts";
-import { chromiumSettings, desktop } from "#tests/helpers/browser.ts";
+import { desktop, measuringSettings } from "#tests/helpers/browser.ts";
 import { startStack } from "#tests/helpers/stack.ts";
 import { addLargeRelease } from "./large-release.ts";
 import type { Bench } from "./line.ts";
@@ -52,12 +52,7 @@ async function read(address: string): Promise<void> {
  */
 async function looksAt(address: string, runs: number): Promise<Record<"figures" | "outlines", Look[]>> {
 	const looks: Record<"figures" | "outlines", Look[]> = { figures: [], outlines: [] };
-	const { executablePath, args } = chromiumSettings;
-	// A reader's browser compiles scripts for speed, which the tests' does not.
-	const browser = await chromium.launch({
-		executablePath,
-		args: args.filter((arg) => !arg.startsWith("--js-flags")),
-	});
+	const browser = await chromium.launch(measuringSettings);
 	try {
 		for (let run = 0; run <= runs; run++) {
 			for (const kind of ["outlines", "figures"] as const) {

@@ -6,7 +6,7 @@ import { createPersonalLink } from "#app/collect/personal-link.server.ts";
 import { freePort } from "#db/setup/ports.mjs";
 import { askGrower } from "#tests/database/answering-fixture.ts";
 import { addPerson, connectOwner, useDatabase } from "#tests/database/surveys-fixture.ts";
-import { chromiumSettings } from "#tests/helpers/browser.ts";
+import { measuringSettings } from "#tests/helpers/browser.ts";
 import { startStack } from "#tests/helpers/stack.ts";
 import type { Bench, Line } from "./line.ts";
 
@@ -75,7 +75,7 @@ async function lookAt(
 	goals: Goals,
 ): Promise<void> {
 	const port = await freePort();
-	const { executablePath, args } = chromiumSettings;
+	const { executablePath, args } = measuringSettings;
 	const browser = await chromium.launch({ executablePath, args: [...args, `--remote-debugging-port=${port}`] });
 	try {
 		for (const [name, url] of looked) {
