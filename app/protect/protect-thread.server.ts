@@ -16,10 +16,13 @@ export interface ThreadOptions {
 const MOST_THREADS = 2;
 
 /** A thread does not inherit the reading of TypeScript from the process that starts it, be it tsx or vitest. */
-const beginning = `
+const fromSources = () => `
 	import(${JSON.stringify(import.meta.resolve("tsx/esm/api"))})
 		.then(({ register }) => register())
 		.then(() => import(${JSON.stringify(new URL("./protect-worker.server.ts", import.meta.url))}));`;
+/** The build puts the thread's program beside the one that starts it. */
+const fromBuild = () => `import(${JSON.stringify(new URL("./protect-worker.js", import.meta.url))});`;
+const beginning = import.meta.url.endsWith(".ts") ? fromSources() : fromBuild();
 
 /**
  * `protect` in threads of its own, so that the caller's stays free for requests and other jobs. Blocks go to whichever

@@ -10,7 +10,8 @@ import { claim, release } from "./running.mjs";
 import { startService, waitFor } from "./services.mjs";
 import { seconds, step, Stop } from "./steps.mjs";
 
-const withTypes = (file) => ["--import", "tsx", file];
+/** A program beside the server: as it was built or, in development, as its sources are now. */
+const program = (name, source, dev) => (dev ? ["--import", "tsx", source] : [`build/programs/${name}.js`]);
 // Room for an address with thousands of filters, so that the API can say what is wrong with it.
 const server = ["--max-http-header-size=131072", "node_modules/@react-router/serve/bin.js", "./build/server/index.js"];
 
@@ -35,14 +36,14 @@ async function prepareDatabase(caller) {
 	return environment;
 }
 
-function startFakes(caller, env) {
+function startFakes(caller, env, dev) {
 	const started = [];
 	if (caller.fakeSignIn) {
-		const service = startService("demo sign-in", withTypes("fakes/sign-in/server.ts"), env);
+		const service = startService("demo sign-in", program("sign-in", "fakes/sign-in/server.ts", dev), env);
 		started.push(waitFor(service, `${env.OAUTH_ISSUER}/healthz`));
 	}
 	if (caller.fakeMail) {
-		const service = startService("demo mail", withTypes("fakes/mail/server.ts"), env);
+		const service = startService("demo mail", program("mail", "fakes/mail/server.ts", dev), env);
 		started.push(waitFor(service, `${env.INBOX_URL}/healthz`));
 	}
 	return started;
@@ -53,7 +54,7 @@ async function startProduct(caller, env, dev) {
 	const environment = { ...env, NODE_ENV: dev ? "development" : "production" };
 	startService(
 		"job worker",
-		[...(dev ? ["--watch", "--watch-preserve-output"] : []), ...withTypes("app/jobs/worker.ts")],
+		[...(dev ? ["--watch", "--watch-preserve-output"] : []), ...program("worker", "app/jobs/worker.ts", dev)],
 		environment,
 	);
 	const host = dev && env.HOST ? ["--host", env.HOST] : [];
@@ -88,7 +89,7 @@ export async function startAll({ dev }) {
 	const env = await prepareDatabase(caller);
 	if (!dev) await step("Production build", ensureBuild);
 	await step("Services", async () => {
-		const fakes = startFakes(caller, env);
+		const fakes = startFakes(caller, env, dev);
 		await Promise.all([...fakes, startProduct(caller, env, dev)]);
 	});
 	welcome(caller, env, since);

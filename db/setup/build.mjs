@@ -5,10 +5,10 @@ import { join, relative } from "node:path";
 import { root } from "./local.mjs";
 import { run } from "./run.mjs";
 
-const folders = ["app", "locales", "public", "db"];
+const folders = ["app", "locales", "public", "db", "fakes"];
 const files = ["package.json", "package-lock.json", "vite.config.ts", "react-router.config.ts", "tsconfig.json"];
-// Neither is imported by the product.
-const leftOut = /^db\/setup(\/|$)|\.test\.tsx?$/;
+// None of it goes into the build, but what says how the programs are built.
+const leftOut = /^db\/setup\/(?!build-programs)|\.test\.tsx?$/;
 
 function listFiles(path) {
 	if (!existsSync(path) || leftOut.test(relative(root, path))) return [];
@@ -33,6 +33,7 @@ export async function ensureBuild() {
 	if (existsSync(stamp) && readFileSync(stamp, "utf8") === hash) return "up to date";
 	const env = { ...process.env, NODE_ENV: "production" };
 	await run(process.execPath, ["node_modules/@react-router/dev/bin.js", "build"], { env });
+	await run(process.execPath, ["db/setup/build-programs.mjs"], { env });
 	writeFileSync(stamp, hash);
 	return "built";
 }

@@ -1,11 +1,11 @@
 import type { Client } from "pg";
 import type { Browser } from "playwright-core";
-import { afterAll, beforeAll, expect, test } from "vitest";
+import { afterAll, afterEach, beforeAll, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
 import { closeLongAgo } from "#tests/database/answering-fixture.ts";
 import { addPerson, asDesk, connectOwner, count, useDatabase } from "#tests/database/surveys-fixture.ts";
-import { axeFindings, openBrowser } from "#tests/helpers/browser.ts";
+import { axeFindings, closePages, openBrowser } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
 import {
 	askByLink,
@@ -28,6 +28,7 @@ beforeAll(async () => {
 	owner = await connectOwner(stack.database.ownerUrl);
 	associate = await addPerson(owner, "Del Fenwick", ["19"]);
 });
+afterEach(() => closePages(browser));
 afterAll(async () => {
 	await browser?.close();
 	await owner?.end();

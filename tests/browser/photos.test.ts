@@ -7,13 +7,13 @@ import exifr from "exifr";
 import type { Client } from "pg";
 import type { Browser, Page } from "playwright-core";
 import sharp from "sharp";
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { afterAll, afterEach, beforeAll, describe, expect, test } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { createPersonalLink } from "#app/collect/personal-link.server.ts";
 import { askForPhotos, answerAndSubmit, type Asked } from "#tests/database/photos-fixture.ts";
 import { addPerson, connectOwner, loadPlaces, useDatabase } from "#tests/database/surveys-fixture.ts";
-import { axeFindings, openBrowser, openPage, phone, signIn } from "#tests/helpers/browser.ts";
+import { axeFindings, closePages, openBrowser, openPage, phone, signIn } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
 import { openWindow, readyForNoSignal } from "./offline/phone.ts";
 
@@ -35,6 +35,7 @@ beforeAll(async () => {
 	await writeFile(path.join(ownFiles, "good.jpg"), (await photo("good.jpg")).buffer);
 	associate = await addPerson(owner, "Del Fenwick", ["19"]);
 });
+afterEach(() => closePages(browser));
 afterAll(async () => {
 	await browser?.close();
 	await owner?.end();

@@ -48,6 +48,11 @@ export async function openPage(browser: Browser, options: BrowserContextOptions 
 	return Object.assign(page, { complaints });
 }
 
+/** Ends all that a test has opened: a page left open goes on working beside the next test's. */
+export async function closePages(browser: Browser): Promise<void> {
+	await Promise.all(browser.contexts().map((context) => context.close()));
+}
+
 /** Every rule of WCAG 2.2 A and AA that axe can check, as one line a finding. */
 export async function axeFindings(page: Page): Promise<string[]> {
 	// Our pages have no frames; the way meant for those opens a second page for each look.

@@ -21,9 +21,9 @@ export type Stack = AsyncDisposable & {
 export type ProgramName = "mail" | "signIn" | "worker" | "server";
 
 const programs: Record<ProgramName, string[]> = {
-	mail: ["--import", "tsx", "fakes/mail/server.ts"],
-	signIn: ["--import", "tsx", "fakes/sign-in/server.ts"],
-	worker: ["--import", "tsx", "app/jobs/worker.ts"],
+	mail: ["build/programs/mail.js"],
+	signIn: ["build/programs/sign-in.js"],
+	worker: ["build/programs/worker.js"],
 	server: ["--max-http-header-size=131072", "node_modules/@react-router/serve/bin.js", "build/server/index.js"],
 };
 
