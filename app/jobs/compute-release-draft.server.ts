@@ -19,12 +19,10 @@ const FEW_CELLS = 40;
  * Makes a draft's cells: tally, estimate, protect, audit. Reading and writing are two short transactions, with the long
  * computation between them; a draft that was superseded meanwhile is left as it is.
  * @param transact runs both; the demo's data passes one that stays in a transaction of its own.
- * @param limits of the search for shields of least loss; the demo's data takes what is found soon, audited like any other.
  */
 export async function computeReleaseDraft(
 	{ releaseDraftId }: { releaseDraftId: string },
 	transact: typeof scopedTransaction = scopedTransaction,
-	limits?: ProtectOptions["limits"],
 ): Promise<void> {
 	const inputs = await transact({ kind: "network" }, (trx) => readInputs(trx, releaseDraftId), "repeatable read");
 	if (!inputs) return;
@@ -38,7 +36,7 @@ export async function computeReleaseDraft(
 		sensitiveKeys: inputs.sensitive.counted,
 		holdings: inputs.holdings,
 	});
-	const protection = await protectWatched(releaseDraftId, table, inputs, { transact, limits });
+	const protection = await protectWatched(releaseDraftId, table, inputs, transact);
 	if (!protection) return;
 	const seconds = (performance.now() - started) / 1000;
 	const { estimates, joins, calibrations } = inputs.weighed;
@@ -64,10 +62,10 @@ async function protectWatched(
 	releaseDraftId: string,
 	table: ProtectionTable,
 	inputs: DraftInputs,
-	{ transact, limits }: { transact: typeof scopedTransaction; limits: ProtectOptions["limits"] },
+	transact: typeof scopedTransaction,
 ): Promise<Protection | undefined> {
 	const { rules, shares } = inputs;
-	const options = { ...whatIsPublic(table, inputs), limits };
+	const options = whatIsPublic(table, inputs);
 	// Such a table is done before a thread of its own would have begun.
 	if (shares.length <= FEW_CELLS) return protect(table, rules, options);
 	await using watch = watchDraft(releaseDraftId, transact);

@@ -118,3 +118,7 @@ export class AttackProgram {
 		this.#program.dispose();
 	}
 }
+
+export function isViolated({ places, shares }: Cut, withheld: Float64Array): boolean {
+	return places.reduce((sum, p, i) => sum + shares[i]! * withheld[p]!, 0) < 1 - 1e-5;
+}

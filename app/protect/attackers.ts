@@ -14,6 +14,8 @@ export interface Attacker {
 	name: string;
 	/** Cells whose value this attacker knows in every quantity, withheld or not. */
 	knows: readonly number[];
+	/** Cells of which this attacker knows a part, by position of the quantity: they are at least as much. */
+	holds?: ReadonlyMap<number, readonly number[]>;
 	/** Tighter than 0 and no upper end; the true value lies between. */
 	bounds?: readonly { cell: number; quantity: string; lower: number; upper: number }[];
 	/** lower <= sum of factor x value <= upper, such as a sum that an earlier release has shown; the truth fits. */
@@ -42,48 +44,32 @@ export function everybody(table: ProtectionTable, told?: Told): Attacker {
 }
 
 /**
- * Each owner who is alone in some cell. An own cell that its single owner knows is not protected from that owner; where
- * the owner has a part in the cell, only the upper side is asked: the level counts that owner's part as known already.
+ * Every owner with all that the own answers tell: the value of a cell in which nobody else is, and that any other cell with a
+ * part of theirs is at least as much as that part. A cell that its single owner knows is not protected from that owner;
+ * where the owner has a part in the cell, only the upper side is asked: the level counts that part as known already.
  */
-export function soleOwners(table: ProtectionTable, told?: Told): Attacker[] {
+export function owners(table: ProtectionTable, told?: Told): Attacker[] {
+	const parts = partsOf(table);
+	type Held = { knows: number[]; holds: Map<number, readonly number[]> };
+	const held = new Map<string, Held>();
+	for (const [index, cell] of table.cells.entries()) {
+		for (const { owner, amounts } of parts(index)) {
+			const one: Held = held.get(owner) ?? { knows: [], holds: new Map() };
+			held.set(owner, one);
+			if (cell.owners === 1) one.knows.push(index);
+			else one.holds.set(index, amounts);
+		}
+	}
 	const bounds = publicBounds(table, told);
-	return [...soleHoldings(table)].map(([name, knows]) => ({
+	return [...held].map(([name, { knows, holds }]) => ({
 		name,
 		knows,
+		holds,
 		bounds,
-		asks: (own, quantity, direction) => {
-			if (knows.includes(own.index)) return 0;
-			if (direction < 0 && knows.some((cell) => liesInside(table, cell, own.index))) return 0;
-			return levelOf(table, own, quantity, direction, told);
-		},
-	}));
-}
-
-/**
- * Single owners with all that they know: each cell that they have a part in is at least as much as that part. Whom to name,
- * the audit tells: most owners' parts are too small to help them.
- */
-export function ownersWithParts(table: ProtectionTable, names: ReadonlySet<string>, told?: Told): Attacker[] {
-	const parts = partsOf(table);
-	const held = new Map([...names].map((name) => [name, new Map<number, readonly number[]>()]));
-	for (const index of table.cells.keys()) {
-		for (const { owner, amounts } of parts(index)) held.get(owner)?.set(index, amounts);
-	}
-	const seen = publicBounds(table, told);
-	return [...held].map(([name, amounts]) => ({
-		name,
-		knows: [...amounts.keys()].filter((index) => table.cells[index]!.owners === 1),
-		bounds: [
-			...seen,
-			...table.quantities.flatMap(({ key }, q) =>
-				[...amounts].map(([cell, part]) => ({ cell, quantity: key, lower: part[q]!, upper: Infinity })),
-			),
-		],
-		asks: (own, quantity, direction) => {
-			const alone = table.cells[own.index]!.owners === 1;
-			if (amounts.has(own.index) && (alone || direction < 0)) return 0;
-			return levelOf(table, own, quantity, direction, told);
-		},
+		asks: (own, quantity, direction) =>
+			knows.includes(own.index) || (direction < 0 && holds.has(own.index))
+				? 0
+				: levelOf(table, own, quantity, direction, told),
 	}));
 }
 
@@ -98,27 +84,4 @@ function levelOf(
 	if (told?.cells?.get(quantity)?.has(own.index)) return 0;
 	const level = own.levels[quantity]!;
 	return direction > 0 ? level : Math.min(level, table.cells[own.index]!.quantities[quantity]!.total);
-}
-
-/** owner -> cells in which this owner is the only one, and whose values this owner therefore knows */
-export function soleHoldings(table: ProtectionTable): Map<string, number[]> {
-	const holdings = new Map<string, number[]>();
-	table.cells.forEach((cell, index) => {
-		if (cell.owners !== 1) return;
-		const owner = cell.soleOwner ?? cell.key;
-		const known = holdings.get(owner);
-		if (known) known.push(index);
-		else holdings.set(owner, [index]);
-	});
-	return holdings;
-}
-
-/** Whether one cell lies inside another: in each tree the same code or one below it. */
-export function liesInside(table: ProtectionTable, inner: number, outer: number): boolean {
-	const wanted = table.cells[outer]!.coordinates;
-	return table.cells[inner]!.coordinates.every((start, d) => {
-		let code: string | undefined = start;
-		while (code !== undefined && code !== wanted[d]) code = table.hierarchies[d]!.parent[code];
-		return code !== undefined;
-	});
 }

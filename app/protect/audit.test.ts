@@ -87,6 +87,37 @@ describe("an audit fails", () => {
 	});
 });
 
+describe("shields", () => {
+	test("are the least that hold against a grower who nearly fills one", async () => {
+		const table = tableOf(beside([2400, 150, 150, 100]));
+		const { pattern, audit: passed, loss } = await protect(table, rules);
+		expect(passed.failures).toEqual([]);
+		expect(pattern.get("c2|apple")!.status).toBe("shown");
+		expect(pattern.get("c3|apple")!.status).toBe("withheld");
+		expect(loss!.lost).toBeCloseTo(loss!.bound, 9);
+	});
+
+	test("are the least where a line needs one cell more", async () => {
+		const grown = holdingsOf({ c1: [500], c2: [400], c3: many(90), c4: many(70) });
+		const { pattern, audit: passed, loss } = await protect(tableOf(grown), rules);
+		expect(passed.failures).toEqual([]);
+		expect([pattern.get("c3|apple")!.status, pattern.get("c4|apple")!.status]).toEqual(["shown", "withheld"]);
+		expect(loss!.lost).toBeCloseTo(loss!.bound, 9);
+	});
+
+	test("are not added for what is known whatever is withheld, and the draft is blocked for it", async () => {
+		const grown = holdingsOf({ c1: [500], c2: many(90), c3: many(90), c4: many(70) });
+		const known = ["c2", "c3", "c4", REGION].flatMap((area) => [`${area}|apple`, `${area}|all`]);
+		const { pattern, audit: failed } = await protect(tableOf(grown), rules, {
+			shownElsewhere: new Map([["lb", new Set(known)]]),
+		});
+		expect(failed.passed).toBe(false);
+		expect(failed.failures.length).toBeGreaterThan(0);
+		expect(failed.failures.every(({ beyondHelp, cellKey }) => beyondHelp && cellKey.startsWith("c1|"))).toBe(true);
+		expect(known.map((key) => pattern.get(key)!.status)).toEqual(known.map(() => "shown"));
+	});
+});
+
 describe("cells of other surveys", () => {
 	const here = holdingsOf({ c1: many(90), c2: many(50) });
 	const shared = (holdings: Holding[], shown: string[]) =>

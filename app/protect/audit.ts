@@ -28,6 +28,8 @@ export interface AuditFailure {
 	 * of it and others of its line the sum is found too closely; `by_revision`: by subtracting an earlier release.
 	 */
 	kind: "solved" | "narrow" | "by_owner" | "in_line" | "by_revision";
+	/** Whether it stands with everything withheld: other releases cause it, or what anybody sees. */
+	beyondHelp?: boolean;
 }
 
 /** What a reviewer may read: counts and relative widths, no withheld number. */

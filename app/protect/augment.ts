@@ -1,3 +1,4 @@
+import type { Moved } from "./knowers.ts";
 import { relationsAmong } from "./relations.ts";
 import { LinearProgram, type Column, type Solver } from "./solver.ts";
 import { childrenOf, type ProtectionTable } from "./table.ts";
@@ -16,6 +17,8 @@ export interface Wish {
 	move: number;
 	/** cells that may not move: what an attacker knows, or what is to be shown */
 	fixed: readonly number[];
+	/** Least values of cells, as an attacker who has a part of each knows them. */
+	atLeast?: Iterable<readonly [cell: number, least: number]>;
 }
 
 interface Scope {
@@ -47,8 +50,8 @@ export class Augmenter {
 		this.#members = membersOf;
 	}
 
-	/** Cells that move, the wished one among them; null when there is no way at all. */
-	find(wish: Wish): number[] | null {
+	/** Cells that move, the wished one among them, with their distances; null when there is no way at all. */
+	find(wish: Wish): Moved[] | null {
 		for (const root of this.#chains(wish.cell)) {
 			const moved = this.#solve(this.#scope(root, wish.quantity), wish);
 			if (moved) return moved;
@@ -83,19 +86,30 @@ export class Augmenter {
 		this.#scopes.clear();
 	}
 
-	#solve(scope: Scope, wish: Wish): number[] | null {
+	#solve(scope: Scope, wish: Wish): Moved[] | null {
 		const { program, place, cells, scale } = scope;
 		const column = 2 * place.get(wish.cell)!;
 		const distance = Math.abs(wish.move) / scale;
 		const fixed = wish.fixed.flatMap((index) => place.get(index) ?? []);
 		for (const p of fixed) this.#bound(scope, wish.quantity, p, false);
+		const low: number[] = [];
+		for (const [index, least] of wish.atLeast ?? []) {
+			const p = place.get(index);
+			if (p === undefined || least <= 0 || this.locked.has(index) || fixed.includes(p)) continue;
+			low.push(p);
+			const value = this.table.cells[index]!.quantities[wish.quantity]!.total;
+			program.setBounds(2 * p + 1, 0, Math.max(0, value - least) / scale);
+		}
 		program.setBounds(column, wish.move > 0 ? distance : 0, wish.move > 0 ? distance : 0);
 		program.setBounds(column + 1, wish.move < 0 ? distance : 0, wish.move < 0 ? distance : 0);
 		const outcome = program.solve();
-		for (const p of fixed) this.#bound(scope, wish.quantity, p, true);
+		for (const p of [...fixed, ...low]) this.#bound(scope, wish.quantity, p, true);
 		this.#bound(scope, wish.quantity, place.get(wish.cell)!, true);
 		if (outcome.status !== "optimal") return null;
-		return cells.filter((_, p) => Math.abs(outcome.values[2 * p]! - outcome.values[2 * p + 1]!) > STILL);
+		return cells.flatMap((index, p): Moved[] => {
+			const distance = outcome.values[2 * p]! - outcome.values[2 * p + 1]!;
+			return Math.abs(distance) > STILL ? [[index, distance * scale]] : [];
+		});
 	}
 
 	#bound(scope: Scope, quantity: string, p: number, free: boolean) {

@@ -1,9 +1,12 @@
-import { type Attacker, everybody, soleOwners } from "./attackers.ts";
+import { type Attacker, everybody, owners } from "./attackers.ts";
 import { blocksOfTable, type TableBlock } from "./blocks-of-table.ts";
 import { defaultLimits, type ExactLimits, solveExactly, type Watch } from "./exact.ts";
+import { Knowers } from "./knowers.ts";
 import type { OwnCell } from "./levels.ts";
+import { type LineGuard, lineGuard } from "./lines.ts";
 import { lossByCell, type Objective, sumOver } from "./loss.ts";
 import { chooseShields, type ShieldOptions } from "./shields.ts";
+import type { ProtectionRules } from "./rules.ts";
 import type { Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
 
@@ -19,7 +22,10 @@ export interface Plan {
 	table: ProtectionTable;
 	own: readonly OwnCell[];
 	options: ChoiceOptions;
+	/** everybody, and every owner where owners attack */
 	attackers: readonly Attacker[];
+	knowers: Knowers;
+	sums?: LineGuard;
 	loss: readonly number[];
 	blocks: TableBlock[];
 }
@@ -46,15 +52,32 @@ export interface Choice {
 	linearPrograms: number;
 }
 
-/** What is to be chosen, taken apart. Blocks do not depend on each other: they can be chosen in any order and thread. */
-export function planChoice(table: ProtectionTable, own: readonly OwnCell[], options: ChoiceOptions): Plan {
-	const attackers = [everybody(table, options.told), ...(options.ownersAttack ? soleOwners(table, options.told) : [])];
-	const loss = lossByCell(table, options.objective);
-	return { table, own, options, attackers, loss, blocks: blocksOfTable(table, options.blockCells) };
+/**
+ * What is to be chosen, taken apart. Blocks do not depend on each other: they can be chosen in any order and thread.
+ * @param rules what a line's sum must meet; asked where owners attack.
+ */
+export function planChoice(
+	table: ProtectionTable,
+	own: readonly OwnCell[],
+	options: ChoiceOptions,
+	rules: ProtectionRules,
+): Plan {
+	const { told, ownersAttack, objective, blockCells } = options;
+	const knowing = ownersAttack ? owners(table, told) : [];
+	return {
+		table,
+		own,
+		options,
+		attackers: [everybody(table, told), ...knowing],
+		knowers: new Knowers(table, knowing),
+		...(ownersAttack && { sums: lineGuard(table, rules, new Set(own.map(({ index }) => index))) }),
+		loss: lossByCell(table, objective),
+		blocks: blocksOfTable(table, blockCells),
+	};
 }
 
 /**
- * Shields of least loss within one block. A block that is the whole table starts from near-least shields. In another,
+ * Shields of least loss within one block. In one that is not the whole table,
  * cells of its root's margin may first be withheld at their loss, and the rest of the table may be anything: no pattern of
  * the whole loses less there. When that choice leaves the margin shown, it needs nothing from outside and is the answer;
  * else the block is chosen once more with its margin shown.
@@ -68,7 +91,7 @@ export function chooseBlock(
 ): BlockChoice | null {
 	if (block.margins.length === 0) return chooseWhole(solver, plan, block, watch);
 	const all = [...block.inside, ...block.margins].toSorted((a, b) => a - b);
-	const wide = solve(solver, plan, all, "free", null, watch);
+	const wide = solve(solver, plan, all, "free", watch);
 	const { bound, proven } = wide;
 	if (bound === Infinity) return null;
 	const margin = new Set(block.margins);
@@ -83,38 +106,38 @@ export function chooseBlock(
 			linearPrograms: wide.linearPrograms,
 		};
 	}
-	const close = solve(solver, plan, block.inside, "still", null, watch);
+	const close = solve(solver, plan, block.inside, "still", watch);
 	const linearPrograms = wide.linearPrograms + close.linearPrograms;
 	const settled = close.shields !== null;
 	const shields = close.shields ?? wide.shields ?? [];
 	return { shields, loss: sumOver(shields, plan.loss), settled, bound, proven: false, linearPrograms };
 }
 
+/** The total of everything stays shown where anything else helps. Where the limits are met first, near-least shields do. */
 function chooseWhole(solver: Solver, plan: Plan, { inside }: TableBlock, watch: Watch): BlockChoice | null {
 	const { table, own, options } = plan;
-	const start = chooseShields(solver, table, own, options);
-	if (!start) return null;
 	const grand = table.cells.findIndex((c) => c.coordinates.every((code, d) => code === table.hierarchies[d]!.root));
-	const locked = !start.has(grand) && !own.some(({ index }) => index === grand);
+	const locked = !own.some(({ index }) => index === grand);
 	const scope = locked ? inside.filter((index) => index !== grand) : inside;
-	const { shields, bound, loss, linearPrograms } = solve(solver, plan, scope, "still", [...start], watch);
-	return { shields: shields ?? [...start], loss, settled: true, bound, proven: bound === loss, linearPrograms };
+	let found = solve(solver, plan, scope, "still", watch);
+	if (locked && found.bound === Infinity && options.grandTotal === "last_resort")
+		found = solve(solver, plan, inside, "still", watch);
+	const { shields, linearPrograms } = found;
+	if (shields) return { ...found, shields, settled: true };
+	const near = chooseShields(solver, plan, own);
+	if (!near) return null;
+	const bound = found.bound === Infinity ? 0 : found.bound;
+	const loss = sumOver(near, plan.loss);
+	return { shields: [...near], loss, settled: true, bound: Math.min(bound, loss), proven: false, linearPrograms };
 }
 
-function solve(
-	solver: Solver,
-	plan: Plan,
-	scope: readonly number[],
-	outside: "still" | "free",
-	start: readonly number[] | null,
-	watch: Watch,
-) {
-	const { table, attackers, loss, options } = plan;
+function solve(solver: Solver, plan: Plan, scope: readonly number[], outside: "still" | "free", watch: Watch) {
+	const { table, attackers, knowers, sums, loss, options } = plan;
 	const members = new Set(scope);
 	const own = plan.own.filter(({ index }) => members.has(index));
 	const certain = new Set(own.map(({ index }) => index));
-	const problem = { table, own, attackers, scope, certain, outside };
-	const result = solveExactly(solver, problem, loss, start, options.limits ?? defaultLimits, watch);
+	const problem = { table, own, attackers, knowers, sums, told: options.told, scope, certain, outside };
+	const result = solveExactly(solver, problem, loss, options.limits ?? defaultLimits, watch);
 	return { ...result, proven: result.bound === result.loss };
 }
 
@@ -124,7 +147,7 @@ function solve(
  * @returns null when even withholding every cell that may be withheld does not help.
  */
 export function joinChoices(solver: Solver, plan: Plan, choices: readonly (BlockChoice | null)[]): Choice | null {
-	const { table, own, options, loss, blocks } = plan;
+	const { own, loss, blocks } = plan;
 	const given = new Set(own.map(({ index }) => index));
 	const settled = new Set<number>();
 	let bound = sumOver(given, loss);
@@ -137,7 +160,7 @@ export function joinChoices(solver: Solver, plan: Plan, choices: readonly (Block
 		linearPrograms += choice.linearPrograms;
 	}
 	const left = own.filter(({ index }) => !settled.has(index));
-	const more = left.length > 0 ? chooseShields(solver, table, left, options, given) : [];
+	const more = left.length > 0 ? chooseShields(solver, plan, left, given) : [];
 	if (!more) return null;
 	const ownSet = new Set(own.map(({ index }) => index));
 	const shields = new Set([...given, ...more].filter((index) => !ownSet.has(index)).toSorted((a, b) => a - b));

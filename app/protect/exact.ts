@@ -35,21 +35,19 @@ export interface ExactResult {
 /**
  * Shields of least loss within a scope, with proof or with a bound. First the relaxed program, in which cells may be
  * withheld in part, is tightened by cuts until it violates none; then 0/1 programs are solved with ever more cuts until
- * their least choice protects every cell. A start prunes: cells whose reduced cost exceeds what the start loses beyond
- * the bound are left out.
+ * their least choice protects every cell.
  * @param loss by cell index
- * @param start shields known to protect, or null
  */
 export function solveExactly(
 	solver: Solver,
 	problem: ShieldProblem,
 	loss: readonly number[],
-	start: readonly number[] | null,
 	limits: ExactLimits = defaultLimits,
 	watch: Watch = () => {},
 ): ExactResult {
-	const search = new Search(solver, new Separator(solver, problem, limits.linearPrograms), loss, start);
+	const search = new Search(solver, new Separator(solver, problem, limits.linearPrograms), loss);
 	try {
+		search.begin();
 		search.relax(limits.rounds, watch);
 		search.branch(limits, watch);
 		return search.result();
@@ -76,7 +74,6 @@ class Search {
 		readonly solver: Solver,
 		readonly separator: Separator,
 		loss: readonly number[],
-		start: readonly number[] | null,
 	) {
 		const { scope } = separator.problem;
 		this.#costs = scope.map((index, p) => (this.separator.certain[p] ? 0 : loss[index]!));
@@ -85,25 +82,21 @@ class Search {
 		scope.forEach((_, p) => {
 			if (this.separator.certain[p]) this.#closed.add(p);
 		});
-		if (start) {
-			const chosen = new Set(start);
-			this.#keep(scope.flatMap((index, p) => (chosen.has(index) && !this.#closed.has(p) ? [p] : [])));
-		}
+	}
+
+	/** Sums of own cells alone are seen to at once. */
+	begin() {
+		this.#addRows(this.separator.lineCuts(new Float64Array(this.#costs.length)));
 	}
 
 	/** Tightens the relaxed program until no cut is violated. */
 	relax(rounds: number, watch: Watch) {
 		for (let round = 0; round < rounds; round++) {
 			const outcome = this.#relaxed.solve();
-			if (outcome.status === "infeasible" && this.#best) {
-				// All that could have beaten the best is closed.
-				this.#bound = this.#loss;
-				return;
-			}
+			if (outcome.status === "infeasible") throw new Unprotectable();
 			if (outcome.status !== "optimal") throw new Error(`the relaxed program ended ${outcome.status}`);
 			this.#bound = Math.max(this.#bound, outcome.objective);
 			watch(this.#loss, Math.min(this.#loss, this.#bound));
-			if (this.#closeable(outcome)) return;
 			const cuts = this.separator.cuts(outcome.values, false);
 			if (cuts.length === 0) return;
 			this.#add(cuts);
@@ -120,14 +113,10 @@ class Search {
 			if (outcome.status === "infeasible") this.#bound = this.#loss;
 			else this.#bound = Math.max(this.#bound, Math.min(this.#loss, outcome.bound));
 			if (outcome.status === "infeasible" || !outcome.chosen) return;
-			const withheld = new Float64Array(this.#costs.length);
-			for (const p of outcome.chosen) withheld[p] = 1;
-			const cuts = this.separator.cuts(withheld, true);
-			const faults = cuts.length === 0 ? this.#addFaults(outcome.chosen) : 0;
-			if (cuts.length > 0) this.#add(cuts);
-			else if (faults === 0) this.#keep(outcome.chosen);
+			const safe = this.#isSafe(outcome.chosen);
+			if (safe) this.#keep(outcome.chosen);
 			watch(this.#loss, Math.min(this.#loss, this.#bound));
-			if (faults === 0 && cuts.length === 0 && outcome.status === "limited") return;
+			if (safe && outcome.status === "limited") return;
 		}
 	}
 
@@ -154,42 +143,28 @@ class Search {
 		this.#loss = loss;
 	}
 
+	/** Whether these protect every cell and every sum; what they do not is cut off. */
+	#isSafe(chosen: readonly number[]): boolean {
+		const withheld = new Float64Array(this.#costs.length);
+		for (const p of chosen) withheld[p] = 1;
+		const lines = this.separator.lineCuts(withheld);
+		this.#addRows(lines);
+		const cuts = this.separator.cuts(withheld, true);
+		this.#add(cuts);
+		return lines.length === 0 && cuts.length === 0;
+	}
+
 	#add(cuts: readonly Cut[]) {
-		const rows = cuts.map(({ places, shares }) => ({ lower: 1, upper: Infinity, columns: places, factors: shares }));
+		this.#addRows(cuts.map(({ places, shares }) => ({ lower: 1, upper: Infinity, columns: places, factors: shares })));
+	}
+
+	#addRows(rows: readonly Row[]) {
+		if (rows.some(({ columns }) => columns.length === 0)) throw new Unprotectable();
 		this.#rows.push(...rows);
 		this.#relaxed.addRows(rows);
 	}
 
-	/** Rules that no attacker states join the program as the patterns that break them come up. */
-	#addFaults(chosen: readonly number[]): number {
-		const { scope, certain, faults } = this.separator.problem;
-		const place = new Map(scope.map((index, p) => [index, p]));
-		const found = faults?.(new Set([...certain, ...chosen.map((p) => scope[p]!)])) ?? [];
-		for (const { withhold, show } of found) {
-			const open = (cells: readonly number[]) =>
-				cells.flatMap((index) => (certain.has(index) ? [] : (place.get(index) ?? [])));
-			const [on, off] = [open(withhold), open(show)];
-			if (on.length + off.length === 0) throw new Unprotectable(show[0] ?? withhold[0]!);
-			const factors = [...on.map(() => 1), ...off.map(() => -1)];
-			const row = { lower: 1 - off.length, upper: Infinity, columns: [...on, ...off], factors };
-			this.#rows.push(row);
-			this.#relaxed.addRows([row]);
-		}
-		return found.length;
-	}
-
 	#isProven() {
 		return this.#best !== null && this.#bound >= this.#loss - 1e-9 * (1 + this.#loss);
-	}
-
-	/** Leaves out cells that no better choice withholds; true when nothing better is left at all. */
-	#closeable({ objective, reduced }: { objective: number; reduced: Float64Array }): boolean {
-		if (!this.#best) return false;
-		for (let p = 0; p < reduced.length; p++) {
-			if (this.#closed.has(p) || objective + reduced[p]! < this.#loss - 1e-9 * (1 + this.#loss)) continue;
-			this.#closed.add(p);
-			this.#relaxed.setBounds(p, 0, 0);
-		}
-		return this.#isProven();
 	}
 }

@@ -14,31 +14,54 @@ interface Hardening {
 	own: readonly OwnCell[];
 	/** Cells that tell nothing when withheld, as they are known. */
 	useless: ReadonlySet<number>;
+	/** Whether anything is known besides this table, which withholding does not hide. */
+	knownOutside: boolean;
 	audit: (shields: ReadonlySet<number>) => AuditResult;
 	more: (wishes: readonly OwnCell[], given: ReadonlySet<number>) => Set<number> | null;
 }
 
 /**
- * Withholds more until the audit passes. Shields are chosen against the attackers of a list; the audit also tries every
- * owner's part of every cell and the sums of lines, of which only few matter and only once the shields are known. What it
- * finds is wished for anew: more room for a cell that an owner narrows down, one cell more of a line whose sum tells.
- * Nothing withheld is shown again, so that each round is nearer to the end, at which everything is withheld.
+ * Withholds more until the audit passes. Shields that were searched for to the end pass at once, as they are chosen against
+ * all that the audit tries; those of a search that met its limits, or of a table taken apart, may not. What it finds is
+ * wished for: room for a cell that somebody narrows down, one cell more of a line whose sum tells. Nothing withheld is shown
+ * again, so that each round is nearer to the end, at which everything is withheld.
+ *
+ * What is known from outside can leave a fault that stands when everything is withheld. As withholding more never makes an
+ * interval narrower, no pattern mends it, and no cell is withheld for it: the rest of the draft is made safe, the audit fails
+ * with that fault marked `beyondHelp`, and the draft is blocked. It is not passed over though other releases cause it: what
+ * the draft shows besides might bring it nearer still, and an audit that passes must mean that nothing was found.
  */
 export function harden(chosen: ReadonlySet<number>, work: Hardening): { shields: Set<number>; audit: AuditResult } {
 	const own = new Set(work.own.map(({ index }) => index));
 	const asked = new Map<string, number>();
+	const all = [...work.table.cells.keys()].filter((index) => work.table.cells[index]!.owners > 0 && !own.has(index));
+	const nothingShown = once(() => work.audit(new Set(all)));
+	const beyondHelp = once(() => new Set(work.knownOutside ? nothingShown().failures.map(nameOf) : []));
 	let shields = new Set(chosen);
 	for (let round = 0; round < ROUNDS; round++) {
 		const audit = work.audit(shields);
 		if (audit.passed) return { shields, audit };
+		const mendable = audit.failures.filter((failure) => !beyondHelp().has(nameOf(failure)));
+		if (mendable.length === 0) return { shields, audit: marked(audit, beyondHelp()) };
 		const given = new Set([...own, ...shields]);
-		const wishes = wishesFor(work, audit.failures, given, asked);
+		const wishes = wishesFor(work, mendable, given, asked);
 		const added = work.more(wishes, given);
 		if (!added) break;
 		shields = new Set([...shields, ...wishes.map(({ index }) => index), ...added].filter((index) => !own.has(index)));
 	}
-	const all = [...work.table.cells.keys()].filter((index) => work.table.cells[index]!.owners > 0 && !own.has(index));
-	return { shields: new Set(all), audit: work.audit(new Set(all)) };
+	return { shields: new Set(all), audit: marked(nothingShown(), beyondHelp()) };
+}
+
+const nameOf = ({ cellKey, quantity, kind }: AuditFailure) => `${cellKey} ${quantity} ${kind}`;
+
+function marked(audit: AuditResult, beyondHelp: ReadonlySet<string>): AuditResult {
+	const failures = audit.failures.map((one) => (beyondHelp.has(nameOf(one)) ? { ...one, beyondHelp: true } : one));
+	return { ...audit, failures };
+}
+
+function once<T>(make: () => T): () => T {
+	let made: { value: T } | undefined;
+	return () => (made ??= { value: make() }).value;
 }
 
 /** @param asked how many times each cell's room was asked for: each time it is doubled. */
@@ -60,7 +83,7 @@ function wishesFor(
 	const cells = [...narrow].flatMap(([key, quantities]): OwnCell[] => {
 		const index = position.get(key)!;
 		const cell = ownOf.get(index) ?? { index, reasons: [], levels: leastLevels(work, index) };
-		const factor = 2 * again(key);
+		const factor = again(key);
 		const levels = Object.entries(cell.levels).map(([quantity, level]) => {
 			const failed = quantities.has(quantity) || quantities.has(null);
 			return [quantity, failed ? level * factor : level] as const;

@@ -20,19 +20,30 @@ export class Knowledge {
 	readonly #place: ReadonlyMap<number, number>;
 	readonly #places = new Map<Attacker, ReadonlySet<number>>();
 	readonly #bounds = new Map<object, ReadonlyMap<number, { lower: number; upper: number }[]>>();
+	readonly #position: number;
+	/** by place: 1 where the cell is withheld whatever is chosen */
+	readonly certain: Uint8Array;
+	/** Place of the sum, where one is asked about: after those of the cells. */
+	readonly sumPlace: number;
 
-	/** @param certain by place: 1 where the cell is withheld whatever is chosen */
+	/** @param sum cells of the scope whose sum is asked about, instead of single cells */
 	constructor(
 		table: ProtectionTable,
 		readonly quantity: Quantity,
-		scope: readonly number[],
-		readonly certain: Uint8Array,
+		readonly scope: readonly number[],
+		certain: Uint8Array,
 		attackers: readonly Attacker[],
 		outside: "still" | "free" = "still",
+		sum: readonly number[] = [],
 	) {
+		this.#position = table.quantities.indexOf(quantity);
+		this.sumPlace = scope.length;
+		this.certain = sum.length > 0 ? Uint8Array.from([...certain, 1]) : certain;
 		const value = (index: number) => table.cells[index]!.quantities[quantity.key]!.total;
 		this.#place = new Map(scope.map((index, place) => [index, place]));
-		this.#values = Float64Array.from(scope, value);
+		const values = scope.map(value);
+		if (sum.length > 0) values.push(sum.reduce((whole, index) => whole + value(index), 0));
+		this.#values = Float64Array.from(values);
 		for (const relation of relationsAmong(table, quantity, this.#place, outside)) this.#addRow(relation);
 		for (const attacker of attackers) {
 			for (const relation of attacker.relations ?? []) {
@@ -47,6 +58,10 @@ export class Knowledge {
 					upper: Math.max(0, relation.upper - truth),
 				});
 			}
+		}
+		if (sum.length > 0) {
+			const columns = [...sum.map((index) => this.#place.get(index)!), this.sumPlace];
+			this.rows.push({ columns, factors: [...sum.map(() => 1), -1], lower: 0, upper: 0 });
 		}
 		this.rows.forEach(({ lower, upper }, r) => {
 			if (lower !== 0 || upper !== 0 || this.#tellers.has(r)) this.sided.push(r);
@@ -68,7 +83,9 @@ export class Knowledge {
 
 	/** How far below and above the truth a withheld cell may lie for this attacker, in levels; the target up to 1. */
 	ends({ attacker, level, place, direction }: Question, p: number): [below: number, above: number] {
-		let below = this.#values[p]!;
+		if (p === this.sumPlace) return [1, 1]; // nobody asks for more of it
+		const part = attacker.holds?.get(this.scope[p]!)?.[this.#position] ?? 0;
+		let below = Math.max(0, this.#values[p]! - part);
 		let above = Infinity;
 		for (const bound of this.#boundsOf(attacker).get(p) ?? []) {
 			below = Math.max(0, Math.min(below, this.#values[p]! - bound.lower));

@@ -1,6 +1,6 @@
 import { type OwnerPart, partsOf, shareOf } from "./parts.ts";
 import { type ProtectionRules, shortfall } from "./rules.ts";
-import type { OwnerShare, ProtectionTable, Quantity } from "./table.ts";
+import type { Equation, OwnerShare, ProtectionTable, Quantity } from "./table.ts";
 
 /**
  * Withheld cells of one line that are together too few, or dominated: as one cell they would be withheld, so their sum must
@@ -11,6 +11,8 @@ export interface LineSum {
 	cells: readonly number[];
 	/** The line that they are in: positions of its other parts and of its total. */
 	others: readonly number[];
+	/** Position of the line's total: where it is shown, what the line withholds is known as a sum. */
+	total: number;
 	/** Room that the sum must have, by quantity; those in which the line does not add up are left out. */
 	levels: Readonly<Record<string, number>>;
 }
@@ -25,19 +27,36 @@ export function guardedSums(
 	own: ReadonlySet<number>,
 	withheld: ReadonlySet<number>,
 ): LineSum[] {
+	return lineGuard(table, rules, own)(withheld);
+}
+
+/** The same for many patterns of one table, and for some of its lines alone. */
+export type LineGuard = (withheld: ReadonlySet<number>, lines?: readonly Equation[]) => LineSum[];
+
+export function lineGuard(table: ProtectionTable, rules: ProtectionRules, own: ReadonlySet<number>): LineGuard {
 	const shares = sharer(table, rules);
-	return table.equations.flatMap(({ total, parts, hierarchy }) => {
-		const hidden = parts.filter((index) => withheld.has(index) && table.cells[index]!.owners > 0);
-		const ownOnly = hidden.filter((index) => own.has(index));
-		const sets = ownOnly.length < hidden.length ? [hidden, ownOnly] : [hidden];
-		const added = table.quantities.filter((quantity) => !quantity.overlapsOver?.includes(hierarchy));
-		return sets.flatMap((cells): LineSum[] => {
-			if (cells.length < 2) return [];
-			const levels = levelsOf(cells, added, rules, shares);
-			if (!levels) return [];
-			const others = [...parts.filter((index) => !cells.includes(index)), total];
-			return [{ cells, others: others.filter((index) => table.cells[index]!.owners > 0), levels }];
-		});
+	return (withheld, lines = table.equations) =>
+		lines.flatMap((line) => sumsOf(table, rules, shares, own, withheld, line));
+}
+
+function sumsOf(
+	table: ProtectionTable,
+	rules: ProtectionRules,
+	shares: Sharer,
+	own: ReadonlySet<number>,
+	withheld: ReadonlySet<number>,
+	{ total, parts, hierarchy }: Equation,
+): LineSum[] {
+	const hidden = parts.filter((index) => withheld.has(index) && table.cells[index]!.owners > 0);
+	const ownOnly = hidden.filter((index) => own.has(index));
+	const sets = ownOnly.length < hidden.length ? [hidden, ownOnly] : [hidden];
+	const added = table.quantities.filter((quantity) => !quantity.overlapsOver?.includes(hierarchy));
+	return sets.flatMap((cells): LineSum[] => {
+		if (cells.length < 2) return [];
+		const levels = levelsOf(cells, added, rules, shares);
+		if (!levels) return [];
+		const others = [...parts.filter((index) => !cells.includes(index)), total];
+		return [{ cells, others: others.filter((index) => table.cells[index]!.owners > 0), total, levels }];
 	});
 }
 

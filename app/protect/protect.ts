@@ -97,7 +97,7 @@ export function planProtection(
 	const { guard, shownElsewhere, revision, ...shielding } = options;
 	const told = whatIsTold(table, rules, guard?.told, shownElsewhere);
 	const own = ownCells(table, checkRules(rules), guard?.keptBack);
-	return { ...planChoice(table, own, { ...STRICT, ...shielding, told }), rules, revision };
+	return { ...planChoice(table, own, { ...STRICT, ...shielding, told }, rules), rules, revision };
 }
 
 /** The last step: one pattern from the choices of all blocks, audited. */
@@ -119,8 +119,9 @@ export function concludeProtection(
 		rules,
 		own,
 		useless: toldCells(options.told),
+		knownOutside: toldCells(options.told).size > 0 || options.told?.publicFactor != null,
 		audit: (chosen) => auditPattern(solver, table, own, chosen, { ...options, rules }),
-		more: (wishes, given) => chooseShields(solver, table, wishes, options, given),
+		more: (wishes, given) => chooseShields(solver, plan, wishes, given),
 	});
 	const pattern = new Map(
 		table.cells.map((cell, index): [string, CellDecision] => {

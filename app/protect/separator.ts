@@ -1,9 +1,13 @@
-import { AttackProgram, type Cut, type Witness } from "./attack-program.ts";
+import { AttackProgram, type Cut, isViolated, type Witness } from "./attack-program.ts";
 import type { Attacker } from "./attackers.ts";
+import { isPossibleTo, type Knowers, type Moved } from "./knowers.ts";
 import { Knowledge } from "./knowledge.ts";
 import type { OwnCell } from "./levels.ts";
-import type { Solver } from "./solver.ts";
+import { LineCutter } from "./line-cuts.ts";
+import type { LineGuard } from "./lines.ts";
+import type { Row, Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
+import type { Told } from "./told.ts";
 import { WitnessProgram } from "./witness-program.ts";
 
 /** Where shields are to be chosen, and against whom. */
@@ -13,20 +17,18 @@ export interface ShieldProblem {
 	own: readonly OwnCell[];
 	/** the first is `everybody`: what serves against them is tried against the others before anything is solved */
 	attackers: readonly Attacker[];
+	/** who of them can tell one table from another by single cells */
+	knowers: Knowers;
+	/** Sums of withheld cells of a line that must not be found either; left out where nobody asks for them. */
+	sums?: LineGuard;
+	/** What is known from outside, beside what the attackers' bounds tell. */
+	told?: Told;
 	/** cells that may move at all: withheld for their own sake, or such that may be withheld; in the table's order */
 	scope: readonly number[];
 	/** cells of the scope that are withheld whatever is chosen */
 	certain: ReadonlySet<number>;
 	/** Whether cells outside the scope stand still, or might move at will: then a bound holds for any wider scope. */
 	outside: "still" | "free";
-	/** Rules for whole patterns that no attacker states. */
-	faults?: (withheld: ReadonlySet<number>) => readonly PatternFault[];
-}
-
-/** A pattern must withhold one of these cells or show one of those; as it is it does neither. */
-export interface PatternFault {
-	withhold: readonly number[];
-	show: readonly number[];
 }
 
 interface Target {
@@ -53,9 +55,9 @@ const SHOWN = 0.02;
 const MOST_CUTS = 40;
 const MOST_CUTS_OF_A_TARGET = 3;
 
-/** No choice of shields protects this cell. */
+/** No choice of shields protects every cell. */
 export class Unprotectable extends Error {
-	constructor(readonly index: number) {
+	constructor() {
 		super("a cell cannot be protected by any shield in its scope");
 	}
 }
@@ -72,8 +74,7 @@ export class Separator {
 	readonly #programs: { cut: AttackProgram; witness: WitnessProgram }[];
 	readonly #targets: Target[];
 	readonly #place: ReadonlyMap<number, number>;
-	/** place -> attackers who know that cell */
-	readonly #knowers = new Map<number, Attacker[]>();
+	readonly #lines: LineCutter | null;
 	/** attackers who know more than cells and what everybody knows: no possible table of another's tells of theirs */
 	readonly #apart: Attacker[];
 	readonly #toldBy = new Map<object, string>();
@@ -89,26 +90,26 @@ export class Separator {
 		this.#place = new Map(scope.map((index, place) => [index, place]));
 		this.certain = Uint8Array.from(scope, (index) => (problem.certain.has(index) ? 1 : 0));
 		this.#apart = attackers.slice(1).filter((attacker) => !this.#sameBounds(attacker, attackers[0]!));
-		for (const attacker of attackers.slice(1)) {
-			if (this.#apart.includes(attacker)) continue;
-			for (const index of attacker.knows) {
-				const place = this.#place.get(index);
-				if (place === undefined) continue;
-				this.#knowers.set(place, [...(this.#knowers.get(place) ?? []), attacker]);
-			}
-		}
+		const known = new Set(scope.flatMap((index, place) => (problem.knowers.isKnown(index) ? [place] : [])));
 		this.#programs = table.quantities.map((quantity) => {
 			const knowledge = new Knowledge(table, quantity, scope, this.certain, attackers, problem.outside);
 			return {
 				cut: new AttackProgram(solver, knowledge),
-				witness: new WitnessProgram(solver, knowledge, new Set(this.#knowers.keys())),
+				witness: new WitnessProgram(solver, knowledge, known),
 			};
 		});
 		this.#targets = this.#listTargets();
+		this.#lines = problem.sums ? new LineCutter(solver, problem, this.certain) : null;
 	}
 
 	get linearPrograms(): number {
-		return this.#programs.reduce((sum, { cut, witness }) => sum + cut.runs + witness.runs, 0);
+		const own = this.#programs.reduce((sum, { cut, witness }) => sum + cut.runs + witness.runs, 0);
+		return own + (this.#lines?.runs ?? 0);
+	}
+
+	/** Rows that the pattern violates since sums of its lines can be found; none when they cannot. */
+	lineCuts(withheld: Float64Array): Row[] {
+		return this.#lines?.cuts(withheld) ?? [];
 	}
 
 	/**
@@ -132,7 +133,8 @@ export class Separator {
 		const first = this.#try(target, everybody, target.level, withheld, whole);
 		if ("cut" in first) return [first.cut];
 		const cuts: Cut[] = [];
-		const others = new Set([...first.witness.moved.flatMap((p) => this.#knowers.get(p) ?? []), ...this.#apart]);
+		const objectors = this.problem.knowers.objectors(target.quantity, this.#moved(first.seen));
+		const others = new Set([...objectors, ...this.#apart]);
 		for (const attacker of others) {
 			const level = attacker.asks(target.own, key, target.direction);
 			if (!(level > 0)) continue;
@@ -149,9 +151,9 @@ export class Separator {
 		level: number,
 		withheld: Float64Array,
 		whole: boolean,
-	): { witness: Witness } | { cut: Cut } {
+	): { seen: Seen } | { cut: Cut } {
 		const seen = this.#seen(target, attacker, level, withheld, whole);
-		if (seen) return { witness: seen };
+		if (seen) return { seen };
 		const { place, direction, quantity } = target;
 		const question = { place, direction, level, attacker };
 		const { cut: cutter, witness: finder } = this.#programs[quantity]!;
@@ -160,31 +162,34 @@ export class Separator {
 		if (witness) return this.#keep(target, { witness, level, attacker });
 		const answer = cutter.ask(question, open);
 		if ("witness" in answer) return this.#keep(target, { witness: answer.witness, level, attacker });
-		if (answer.cut === null) throw new Unprotectable(target.own.index);
+		if (answer.cut === null) throw new Unprotectable();
 		// The same with shown cells that move a little gives a cut on fewer cells, where it gives one at all.
 		const second = cutter.ask(question, { ...open, shown: SHOWN });
 		for (const { cut } of [second as { cut?: Cut | null }, answer]) {
 			if (cut && isViolated(cut, withheld)) return { cut };
 		}
 		// The relaxed search allowed less than the truth does: nothing is wrong that a cut could tell.
-		if (!whole) return { witness: { moved: [], by: [] } };
+		if (!whole) return { seen: { witness: { moved: [], by: [] }, level, attacker } };
 		throw new Error("a pattern fails by less than can be told");
 	}
 
 	#seen(target: Target, attacker: Attacker, level: number, withheld: Float64Array, whole: boolean) {
-		const known = this.#programs[target.quantity]!.cut.knowledge.placesOf(attacker);
 		return target.seen.find(
 			(seen) =>
 				seen.level >= level &&
 				this.#sameBounds(seen.attacker, attacker) &&
 				this.#fits(seen.witness, withheld, whole) &&
-				!seen.witness.moved.some((p) => known.has(p)),
-		)?.witness;
+				(seen.attacker === attacker || isPossibleTo(this.problem.table, attacker, target.quantity, this.#moved(seen))),
+		);
 	}
 
-	#keep(target: Target, seen: Seen): { witness: Witness } {
+	#moved({ witness: { moved, by }, level }: Seen): Moved[] {
+		return moved.map((p, i) => [this.problem.scope[p]!, by[i]! * level] as const);
+	}
+
+	#keep(target: Target, seen: Seen): { seen: Seen } {
 		target.seen = [seen, ...target.seen].slice(0, KEPT_WITNESSES);
-		return seen;
+		return { seen };
 	}
 
 	/** By content: each attacker may hold a list of its own of what everybody knows. */
@@ -227,11 +232,8 @@ export class Separator {
 			cut.dispose();
 			witness.dispose();
 		}
+		this.#lines?.dispose();
 	}
-}
-
-export function isViolated({ places, shares }: Cut, withheld: Float64Array): boolean {
-	return places.reduce((sum, p, i) => sum + shares[i]! * withheld[p]!, 0) < 1 - 1e-5;
 }
 
 const keyOf = ({ places, shares }: Cut) => places.map((p, i) => `${p}:${shares[i]!.toFixed(6)}`).join(" ");

@@ -1,13 +1,15 @@
-import { liesInside, soleHoldings } from "./attackers.ts";
+import type { Attacker } from "./attackers.ts";
 import { Augmenter } from "./augment.ts";
+import { isPossibleTo, type Knowers, type Moved } from "./knowers.ts";
 import type { OwnCell } from "./levels.ts";
-import { lossByCell, type Objective } from "./loss.ts";
+import type { LineGuard, LineSum } from "./lines.ts";
+import type { Objective } from "./loss.ts";
 import type { Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
 import { isTold, type Told, toldCells } from "./told.ts";
 
 export interface ShieldOptions {
-	/** Whether single owners of cells are attackers who know those cells. */
+	/** Whether owners use what they know, alone and together in a line. */
 	ownersAttack: boolean;
 	/** Whether the total of everything may be withheld when nothing else helps. */
 	grandTotal: "last_resort" | "never";
@@ -15,6 +17,16 @@ export interface ShieldOptions {
 	objective?: Objective;
 	/** What is known from outside: cells of these cannot shield. */
 	told?: Told;
+}
+
+/** What shields are chosen for: a plan, or what there is of one. */
+export interface ShieldTask {
+	table: ProtectionTable;
+	options: ShieldOptions;
+	/** by cell: what withholding it loses */
+	loss: readonly number[];
+	knowers: Knowers;
+	sums?: LineGuard;
 }
 
 /** The cells on which the protection of one own cell, in one quantity and direction, rests. */
@@ -36,24 +48,25 @@ const LEAST_WEIGHT = 1e-3;
  * move it up and down by its level is found with cells already withheld almost free, and the cells of that way are
  * withheld. What is withheld later can only widen an interval, so one pass protects all. A second pass shows each
  * shield again, dearest first, where every cell resting on it finds another footing among the withheld.
+ * A line whose withheld cells are together too few gets the least of its other cells besides.
  * The order is fixed by weight and position, so the same table gives the same shields.
  * @param given cells that are withheld already and stay so
  * @returns positions of the shields, without own and given cells; null when even withholding every cell that may be withheld does not help.
  */
 export function chooseShields(
 	solver: Solver,
-	table: ProtectionTable,
+	task: ShieldTask,
 	own: readonly OwnCell[],
-	options: ShieldOptions,
 	given: ReadonlySet<number> = new Set(),
 ): Set<number> | null {
-	const weights = lossByCell(table, options.objective ?? "value").map((loss) => Math.max(LEAST_WEIGHT, loss));
+	const { table, options } = task;
+	const weights = task.loss.map((loss) => Math.max(LEAST_WEIGHT, loss));
 	const kept = new Set([...own.map(({ index }) => index), ...given]);
 	const hidden = new Set(kept);
 	const grand = table.cells.findIndex((c) => c.coordinates.every((code, d) => code === table.hierarchies[d]!.root));
 	const locked = new Set([...toldCells(options.told), ...(hidden.has(grand) ? [] : [grand])]);
 	const augmenter = new Augmenter(solver, table, weights, hidden, locked);
-	const find = footingFinder(table, augmenter, options);
+	const find = footingFinder(task, augmenter);
 	const hide = (cells: readonly number[]) => {
 		for (const index of cells) if (!hidden.has(index)) augmenter.hide(index);
 	};
@@ -68,7 +81,8 @@ export function chooseShields(
 			if (!footing) return null;
 			footings.push({ ...wish, cells: footing });
 		}
-		showNeedless(augmenter, footings, kept, weights, find);
+		mixLines(task, augmenter, weights);
+		showNeedless(task, augmenter, footings, kept, weights, find);
 		return new Set([...hidden].filter((index) => !kept.has(index)).toSorted((a, b) => a - b));
 	} finally {
 		augmenter.dispose();
@@ -83,6 +97,7 @@ type Find = (
 
 /** Shows every shield that nothing rests on, or whose dependants can all stand elsewhere among the withheld. */
 function showNeedless(
+	task: ShieldTask,
 	augmenter: Augmenter,
 	footings: Footing[],
 	kept: ReadonlySet<number>,
@@ -99,8 +114,8 @@ function showNeedless(
 	const shields = [...augmenter.hidden].filter((index) => !kept.has(index));
 	for (const shield of shields.toSorted((a, b) => weights[b]! - weights[a]! || a - b)) {
 		const moves = new Map<Footing, Set<number>>();
-		let needed = false;
-		for (const footing of resting.get(shield) ?? []) {
+		let needed = mixesLine(task, augmenter.hidden, shield);
+		for (const footing of needed ? [] : (resting.get(shield) ?? [])) {
 			const other = find(footing, [shield]);
 			needed = !other || [...other].some((index) => !augmenter.hidden.has(index));
 			if (needed) break;
@@ -116,30 +131,68 @@ function showNeedless(
 	}
 }
 
-/** Finds on what a wish can stand, for the public and for each single owner who knows a cell of it. */
-function footingFinder(table: ProtectionTable, augmenter: Augmenter, options: ShieldOptions): Find {
-	const holdings = options.ownersAttack ? soleHoldings(table) : new Map<string, number[]>();
-	const ownerOf = new Map([...holdings].flatMap(([owner, cells]) => cells.map((index) => [index, owner] as const)));
+/** Withholds one cell more of each line whose withheld cells are too few together, their sum being shown. */
+function mixLines({ sums, options }: ShieldTask, augmenter: Augmenter, weights: readonly number[]) {
+	const told = toldCells(options.told);
+	const { hidden, locked } = augmenter;
+	let narrow = sums?.(hidden) ?? [];
+	while (narrow.length > 0) {
+		const more = new Set<number>();
+		for (const sum of narrow) {
+			// Where the total is withheld, or another cell is, the sum may have room: the audit tells.
+			if (!isKnown(sum, hidden)) continue;
+			const open = sum.others.filter((index) => !locked.has(index) && !told.has(index));
+			if (open.length > 0) more.add(open.reduce((least, index) => (weights[index]! < weights[least]! ? index : least)));
+		}
+		if (more.size === 0) return;
+		for (const index of more) augmenter.hide(index);
+		narrow = sums?.(hidden) ?? [];
+	}
+}
+
+/** Whether a line's withheld cells are enough together only with this one. */
+function mixesLine({ table, sums }: ShieldTask, hidden: ReadonlySet<number>, shield: number): boolean {
+	if (!sums) return false;
+	const lines = table.equations.filter(({ total, parts }) => total === shield || parts.includes(shield));
+	const without = new Set(hidden);
+	without.delete(shield);
+	const known = (now: ReadonlySet<number>) => sums(now, lines).filter((sum) => isKnown(sum, now)).length;
+	return known(without) > known(hidden);
+}
+
+/** Whether what is shown tells this sum as it stands: the total, and every other cell of the line. */
+function isKnown({ others }: LineSum, hidden: ReadonlySet<number>): boolean {
+	return !others.some((index) => hidden.has(index));
+}
+
+/** Finds on what a wish can stand, for the public and for each owner who knows better of a cell that moves. */
+function footingFinder({ table, knowers }: ShieldTask, augmenter: Augmenter): Find {
 	return ({ own, quantity, direction }, fixed, use) => {
 		const level = own.levels[quantity]! * MARGIN;
 		const value = table.cells[own.index]!.quantities[quantity]!.total;
 		const move = direction > 0 ? level : -Math.min(level, value);
+		const q = table.quantities.findIndex(({ key }) => key === quantity);
 		const first = augmenter.find({ cell: own.index, quantity, move, fixed });
 		if (!first) return null;
-		use?.(first);
-		const footing = new Set(first);
-		const attackers = new Set(first.flatMap((index) => ownerOf.get(index) ?? []));
-		attackers.delete(ownerOf.get(own.index) ?? "");
-		for (const attacker of attackers) {
-			const known = holdings.get(attacker)!;
-			if (direction < 0 && known.some((index) => liesInside(table, index, own.index))) continue;
-			const way = augmenter.find({ cell: own.index, quantity, move, fixed: [...fixed, ...known] });
+		const ways = [first];
+		use?.(first.map(([index]) => index));
+		for (const attacker of knowers.objectors(q, first)) {
+			if (isSpared(attacker, own.index, direction)) continue;
+			if (ways.some((way) => isPossibleTo(table, attacker, q, way))) continue;
+			const atLeast = [...(attacker.holds ?? [])].map(([cell, amounts]) => [cell, amounts[q]!] as const);
+			const known = [...fixed, ...attacker.knows];
+			const way = augmenter.find({ cell: own.index, quantity, move, fixed: known, atLeast });
 			if (!way) return null;
-			use?.(way);
-			for (const index of way) footing.add(index);
+			ways.push(way);
+			use?.(way.map(([index]) => index));
 		}
-		return footing;
+		return new Set(ways.flatMap((way: readonly Moved[]) => way.map(([index]) => index)));
 	};
+}
+
+/** From whom a cell need not be kept: its single owner; and, below its value, whoever has a part in it. */
+function isSpared({ knows, holds }: Attacker, cell: number, direction: 1 | -1): boolean {
+	return knows.includes(cell) || (direction < 0 && (holds?.has(cell) ?? false));
 }
 
 function wishesOf(table: ProtectionTable, own: readonly OwnCell[], weights: readonly number[], told: Told | undefined) {

@@ -127,7 +127,15 @@ export const ReleaseAudit = z.object({
 	seconds: z.number(),
 	/** By how much more is lost at most than any safe choice must lose, as a share; 0 is proven least, null is not known. */
 	gap: z.number().nullable().default(null),
-	failures: z.array(z.object({ cellKey: z.string(), quantity: z.string().nullable(), kind: z.string() })),
+	failures: z.array(
+		z.object({
+			cellKey: z.string(),
+			quantity: z.string().nullable(),
+			kind: z.string(),
+			/** Whether it stands with everything withheld, since it is known from elsewhere. */
+			beyondHelp: z.boolean().optional(),
+		}),
+	),
 });
 export type ReleaseAudit = z.infer<typeof ReleaseAudit>;
 

@@ -49,14 +49,11 @@ export async function fillRelease(trx: Trx, team: Team, season: Released): Promi
 	return `release ${number} with its report`;
 }
 
-/** The full search takes three times as long and shows as many of the demo's cells. */
-const soon = { rounds: 3, masters: 1, nodes: 50, linearPrograms: 500 };
-
 async function draftRelease(trx: Trx, associate: Associate, { season, surveyId, release }: Released): Promise<string> {
 	const made = await createDraft(trx, associate, surveyId, networkRules);
 	if (made.outcome !== "drafted") throw new Error(`draft ${season}: ${made.outcome}`);
 	const { releaseDraftId } = made;
-	await computeReleaseDraft({ releaseDraftId }, (_scope, work) => work(trx), soon);
+	await computeReleaseDraft({ releaseDraftId }, (_scope, work) => work(trx));
 	await trx
 		.updateTable("collect.release_draft")
 		.set({ drafted_at: release.draftedAt, computed_at: new Date(release.draftedAt.getTime() + 40_000) })

@@ -1,6 +1,8 @@
 // Worked examples by what they hold, not by name, so that other values in the same layout are recomputed too.
 import { feasibleIntervals } from "#app/protect/audit.ts";
 import { shortfall } from "#app/protect/rules.ts";
+import { Knowers } from "#app/protect/knowers.ts";
+import { lossByCell } from "#app/protect/loss.ts";
 import { chooseShields } from "#app/protect/shields.ts";
 import type { Solver } from "#app/protect/solver.ts";
 import type { ProtectionTable } from "#app/protect/table.ts";
@@ -118,7 +120,9 @@ function checkShields(solver: Solver, input: Example["input"], expected: Example
 	const primary = table.cells.findIndex(({ key }) => key === twoWayKey(cells, input.primary as number[]));
 	for (const [level, least] of Object.entries(expected.min_value_by_protection as Record<string, number>)) {
 		const own = [{ index: primary, reasons: ["dominated" as const], levels: { [VALUE]: Number(level) } }];
-		const shields = chooseShields(solver, table, own, { ownersAttack: false, grandTotal: "never" });
+		const options = { ownersAttack: false, grandTotal: "never" } as const;
+		const task = { table, options, loss: lossByCell(table, "value"), knowers: new Knowers(table, []) };
+		const shields = chooseShields(solver, task, own);
 		seen.holds(shields !== null);
 		const withheld = new Set([primary, ...(shields ?? [])]);
 		const value = (index: number) => table.cells[index]!.quantities[VALUE]!.total;

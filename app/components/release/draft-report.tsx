@@ -42,7 +42,7 @@ export type DraftReportProps = {
 		linearPrograms: number;
 		seconds: number;
 		gap: number | null;
-		failures: unknown[];
+		failures: { beyondHelp?: boolean }[];
 	};
 	rules: Record<"minimumOwners" | "dominancePercent" | "steadyCv" | "careCv" | "steadyDays" | "careDays", number>;
 	asked: number;
@@ -90,6 +90,7 @@ function AuditFacts({ audit, rules, asked, answered, setAside, joinCount, checks
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	const room = audit.narrowest;
+	const beyondHelp = audit.failures.filter((failure) => failure.beyondHelp).length;
 	return (
 		<DescriptionList
 			items={[
@@ -101,6 +102,9 @@ function AuditFacts({ audit, rules, asked, answered, setAside, joinCount, checks
 						</StatusBadge>
 					),
 				},
+				...(beyondHelp === 0
+					? []
+					: [{ term: t("audit.beyondHelp"), detail: t("audit.beyondHelpDetail", { count: beyondHelp }) }]),
 				{
 					term: t("audit.tried"),
 					detail: t("audit.triedDetail", {
