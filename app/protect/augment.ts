@@ -107,8 +107,8 @@ export class Augmenter {
 		this.#bound(scope, wish.quantity, place.get(wish.cell)!, true);
 		if (outcome.status !== "optimal") return null;
 		return cells.flatMap((index, p): Moved[] => {
-			const distance = outcome.values[2 * p]! - outcome.values[2 * p + 1]!;
-			return Math.abs(distance) > STILL ? [[index, distance * scale]] : [];
+			const by = outcome.values[2 * p]! - outcome.values[2 * p + 1]!;
+			return Math.abs(by) > STILL ? [[index, by * scale]] : [];
 		});
 	}
 

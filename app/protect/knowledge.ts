@@ -49,7 +49,7 @@ export class Knowledge {
 			for (const relation of attacker.relations ?? []) {
 				if (relation.quantity !== quantity.key) continue;
 				const { cells, factors } = relation;
-				const truth = cells.reduce((sum, index, i) => sum + factors[i]! * value(index), 0);
+				const truth = cells.reduce((whole, index, i) => whole + factors[i]! * value(index), 0);
 				this.#tellers.set(this.rows.length, attacker);
 				this.#addRow({
 					cells,
