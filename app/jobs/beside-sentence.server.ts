@@ -28,9 +28,10 @@ export async function besideSentence(
 	if (!releaseId || !measure) return null;
 	const wanted = crops.map((cropKey) => ({ measureKey: measure.key, cropKey }));
 	const beside = await findComparison(releaseId, county_fips, wanted);
-	const told = wanted.find((one) => beside?.cells[comparisonKey(one)]);
+	// A figure without a likely range is left to the page, which says why it has none.
+	const told = wanted.find((one) => typeof beside?.cells[comparisonKey(one)]?.lower === "number");
 	const cell = told && beside?.cells[comparisonKey(told)];
-	if (!told || !cell) return null;
+	if (!told || !cell || cell.lower === null || cell.upper === null) return null;
 	const isCounty = cell.kind === "county" && cell.stateFips !== null;
 	return t([`mail:thank_you.beside_${measure.key}`, "mail:thank_you.beside"], {
 		area: isCounty
@@ -39,6 +40,6 @@ export async function besideSentence(
 		measure: wordsIn(measure.label, language),
 		crop: t([`public:crop_said.${told.cropKey}`, `common:crop.${told.cropKey}`]),
 		value: format.figure(cell.value, measure),
-		...format.ends(cell.lower ?? cell.value, cell.upper ?? cell.value, measure),
+		...format.ends(cell.lower, cell.upper, measure),
 	});
 }

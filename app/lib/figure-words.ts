@@ -26,12 +26,13 @@ export function figureWords(figure: SaidFigure, t: TFunction, format: Formatter)
 	if (cell.status === "no_growers") return t("public:report.inText.noGrowers");
 	if (cell.steadiness === "rough") return t("public:report.inText.rough");
 	if (cell.value === null || cell.steadiness === null) return t("public:report.inText.notAsked");
-	const said = {
-		value: format.figure(cell.value, measure),
-		...format.ends(cell.lower ?? cell.value, cell.upper ?? cell.value, measure),
-		seasons: format.list((earlier?.seasons ?? []).map(String)),
-	};
-	if (earlier?.of === "mean") return t("report:inText.mean", said);
+	const value = format.figure(cell.value, measure);
+	const seasons = format.list((earlier?.seasons ?? []).map(String));
+	if (earlier?.of === "mean") return t("report:inText.mean", { value, seasons });
+	if (cell.lower === null || cell.upper === null) {
+		return earlier ? t("report:inText.lastAlone", { value, seasons }) : t("public:report.inText.alone", { value });
+	}
+	const said = { value, seasons, ...format.ends(cell.lower, cell.upper, measure) };
 	if (earlier) return t("report:inText.last", said);
 	return t(cell.steadiness === "care" ? "public:report.inText.care" : "public:report.inText.steady", said);
 }

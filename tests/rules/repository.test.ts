@@ -42,7 +42,6 @@ const notImported: Record<string, string> = {
 	oxlint: "run by npm run lint",
 	prettier: "run by npm run format",
 	"typescript-7": "run by npm run types",
-	vite: "what React Router's build and vitest run on",
 };
 
 describe("packages", () => {

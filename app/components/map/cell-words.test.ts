@@ -39,3 +39,12 @@ test("thousands of counties are told in sentences that are looked up once, not f
 	expect(lookedUp).toBeLessThan(100);
 	expect((await saidIn("es")).said[1999]).toMatch(/Iowa.*99.*19.*99/);
 });
+
+test("a figure without a likely range is told as such, in both languages", async () => {
+	const county = counties[9]!;
+	Object.assign(county.cell, { lower: null, upper: null });
+	expect((await saidIn("en")).said[9]).toBe(
+		"$& 9 County, Iowa: 9%; how far it may be off is not known; use with care. 5–9 growers answered.",
+	);
+	expect((await saidIn("es")).said[9]).toContain("no se sabe cuánto puede variar");
+});

@@ -25,12 +25,14 @@ export function useCellWords(measure: FigureShape) {
 	const rough = onceEach((band: string) =>
 		sentencePattern(["name"], ({ name }) => t("map.said.rough", { name, band })),
 	);
-	const number = onceEach((key: Steadiness) => {
-		const steadiness = t(`common:steadiness.${key}`);
-		return onceEach((band: string) =>
-			sentencePattern(numberGaps, (marks) => t("map.said.number", { ...marks, band, steadiness })),
-		);
-	});
+	const numberSaid = (sentence: "number" | "numberAlone") =>
+		onceEach((key: Steadiness) => {
+			const steadiness = t(`common:steadiness.${key}`);
+			return onceEach((band: string) =>
+				sentencePattern(numberGaps, (marks) => t(`map.said.${sentence}`, { ...marks, band, steadiness })),
+			);
+		});
+	const [number, alone] = [numberSaid("number"), numberSaid("numberAlone")];
 	return (name: string, cell: DrawnCell | undefined): string => {
 		if (!cell) return blank("no_figure")({ name });
 		if (cell.look === "withheld" || cell.look === "no_growers" || cell.look === "no_figure") {
@@ -38,7 +40,11 @@ export function useCellWords(measure: FigureShape) {
 		}
 		const band = bandWords(cell.respondentsBand);
 		if (cell.look === "rough" || cell.value === null) return rough(band)({ name });
-		const ends = format.ends(cell.lower ?? cell.value, cell.upper ?? cell.value, measure);
-		return number(cell.steadiness ?? "care")(band)({ name, value: figure(cell.value), ...ends });
+		const [steadiness, value] = [cell.steadiness ?? "care", figure(cell.value)];
+		if (cell.lower === null || cell.upper === null) {
+			return alone(steadiness)(band)({ name, value, lower: "", upper: "" });
+		}
+		const ends = format.ends(cell.lower, cell.upper, measure);
+		return number(steadiness)(band)({ name, value, ...ends });
 	};
 }

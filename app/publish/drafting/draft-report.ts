@@ -64,10 +64,10 @@ export function draftReport(input: DraftInput): ReportContent {
 	};
 }
 
-/** Whether two likely ranges have a value in common; a figure without a range is a point. */
+/** Whether two likely ranges have a value in common. A figure without a range is not known to differ from any other. */
 function overlap(a: CropCell, b: CropCell): boolean {
-	const [aLow, aHigh, bLow, bHigh] = [a.lower ?? a.value, a.upper ?? a.value, b.lower ?? b.value, b.upper ?? b.value];
-	return (aLow ?? 0) <= (bHigh ?? 0) && (bLow ?? 0) <= (aHigh ?? 0);
+	if (a.lower === null || a.upper === null || b.lower === null || b.upper === null) return true;
+	return a.lower <= b.upper && b.lower <= a.upper;
 }
 
 const counted = (status: string) => referenceText({ measure: cellCounts, crop: status, area: "county" });

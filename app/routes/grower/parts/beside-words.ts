@@ -16,13 +16,14 @@ export function useBesideWords() {
 	const format = useFormat();
 	const nameOf = useAreaName();
 	return ({ own, measure, cell }: Beside): string => {
-		const [lower, upper] = [cell.lower ?? cell.value, cell.upper ?? cell.value];
-		const said = {
+		const { lower, upper } = cell;
+		const figures = {
 			area: nameOf(cell),
 			own: format.figure(own.value, measure),
 			value: format.figure(cell.value, measure),
-			...format.ends(lower, upper, measure),
 		};
+		if (lower === null || upper === null) return t("compare.said.alone", figures);
+		const said = { ...figures, ...format.ends(lower, upper, measure) };
 		if (own.kind === "proportion") return t(`compare.said.${own.value > 0 ? "yes" : "no"}`, said);
 		const shown = (value: number) => Number(value.toFixed(measure.decimals));
 		const end = shown(own.value) > shown(upper) ? "above" : shown(own.value) < shown(lower) ? "below" : "within";
