@@ -15,6 +15,8 @@ const Settings = z.object({
 	/** Set by the start command when outside services are local fakes and the data is invented. */
 	DEMO: z.stringbool().default(false),
 	INBOX_URL: z.url().optional(),
+	/** Address of the licence that the network gives its released figures. Without one, files and pages name none. */
+	DATA_LICENSE_URL: z.url({ protocol: /^https?$/ }).optional(),
 	CODE_VERSION: z.string().default("unversioned"),
 	/** The first coordinator, who grants all other roles: the provider's subject. */
 	COORDINATOR_SUBJECT: z.string().optional(),

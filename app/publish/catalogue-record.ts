@@ -13,11 +13,13 @@ export type Catalogued = {
 	network: string;
 	email: string;
 	site: string;
+	license: string | null;
 	/** Address of the edition before this one. */
 	previous: string | null;
 };
 
 const addressOf = ({ site, release }: Catalogued) => `${site}/data/${release.number}`;
+const termsAddress = (told: Catalogued) => `${addressOf(told)}#terms`;
 const fileAddress = ({ site, release }: Catalogued, name: string) =>
 	`${site}/api/v1/releases/${release.number}/files/${name}`;
 const plainType = (mediaType: string) => mediaType.split(";")[0]!;
@@ -42,6 +44,8 @@ export function schemaOrgDataset(told: Catalogued): Record<string, unknown> {
 		creator: organization,
 		publisher: organization,
 		isAccessibleForFree: true,
+		usageInfo: termsAddress(told),
+		...(told.license && { license: told.license }),
 		...(told.previous && { isBasedOn: told.previous }),
 		variableMeasured: measures.map(({ key, label, unit }) => ({
 			"@type": "PropertyValue",
@@ -91,6 +95,8 @@ export function dcatDataset(told: Catalogued): Record<string, unknown> {
 		"dcterms:accrualPeriodicity": { "@id": "http://publications.europa.eu/resource/authority/frequency/ANNUAL" },
 		"dcat:version": String(release.number),
 		...(told.previous && { "dcat:previousVersion": { "@id": told.previous } }),
+		"dcterms:rights": { "@id": termsAddress(told) },
+		...(told.license && { "dcterms:license": { "@id": told.license } }),
 		"dcat:landingPage": { "@id": addressOf(told) },
 		"dcat:distribution": files.map((file) => distributionOf(told, file)),
 	};

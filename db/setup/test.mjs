@@ -34,7 +34,9 @@ const kept = ([name]) =>
 		"NODE_ENV",
 		"CODE_VERSION",
 		"COORDINATOR_SUBJECT",
+		"DATA_LICENSE_URL",
 		"PHOTO_DIR",
+		"DATA_LICENSE_URL",
 	].includes(name);
 const cleanEnvironment = Object.fromEntries(Object.entries(process.env).filter(kept));
 

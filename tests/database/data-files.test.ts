@@ -96,6 +96,19 @@ const told = (measure: string, crop: string, area: string) => {
 };
 
 describe("the files of a release", () => {
+	test("state the terms of use wherever a format has a place for it, and no licence that nobody named", async () => {
+		const identify = "Nobody uses them to work out a grower, a farm or a withheld figure.";
+		for (const name of ["csv-metadata.json", "datapackage.json", "codebook.json", "codebook.csv", "counties.geojson"]) {
+			expect(text(name), name).toContain(identify);
+			expect(text(name), name).toContain("cita la publicación por su número");
+			expect(text(name), name).not.toMatch(/"(dc:)?licen[sc]e[s"]*: *["{[]/);
+		}
+		const [kept] = await duck(
+			`select decode(value) as terms from parquet_kv_metadata('${await folder()}/cells.parquet') where decode(key) = 'terms_of_use'`,
+		);
+		expect(kept?.terms).toContain(identify);
+	});
+
 	test("are kept with the size and checksum of their bytes, and the archive holds the same bytes", async () => {
 		const facts = await listFiles(release.releaseId);
 		expect(facts.length).toBe(files.size);

@@ -58,6 +58,7 @@ export const schemaOrgRules: Rules = {
 	spatialCoverage: { must: each(thing({ "@type": { must: is("Place") }, name: { must: text } })) },
 	isAccessibleForFree: { must: is(true) },
 	isBasedOn: { may: address },
+	usageInfo: { must: address },
 	license: { may: address },
 	variableMeasured: {
 		must: each(thing({ "@type": { must: is("PropertyValue") }, name: { must: text }, unitText: { may: text } })),
@@ -118,6 +119,7 @@ export const dcatRules: Rules = {
 	"dcat:version": { must: text },
 	"dcat:previousVersion": { may: iri },
 	"dcat:landingPage": { must: iri },
+	"dcterms:rights": { must: iri },
 	"dcterms:license": { may: iri },
 	"dcat:distribution": {
 		must: each(

@@ -9,7 +9,7 @@ const header = ["part", "code", "name", "description", "unit"];
 
 /** What every column, measure and code of the files means, one row each, in one language, after a row of headings. */
 export function codebookRows(source: FileSource, language: Language): (string | null)[][] {
-	const { crops, words } = source;
+	const { crops, words, terms, license } = source;
 	const measures = distinctOf(source, definitionsOf).map(({ item }) => item);
 	const t = words[language];
 	return [
@@ -44,6 +44,8 @@ export function codebookRows(source: FileSource, language: Language): (string | 
 			null,
 		]),
 		...distinctOf(source, questionsOf).flatMap(({ item }) => questionRows(item, language)),
+		["terms", "use", t("dataroom:terms.title"), terms[language], null],
+		...(license ? [["terms", "license", license, null, null]] : []),
 	];
 }
 
@@ -68,7 +70,7 @@ export function codebookCsv(source: FileSource): string {
 
 /** The codebook for programs, with how each release was made: the rules it was protected by and who was asked. */
 export function codebookJson(source: FileSource): unknown {
-	const { parts, isTable, crops, words, address } = source;
+	const { parts, isTable, crops, words, address, terms, license } = source;
 	const told = (code: string, keyOf: (part: "name" | "about") => string) => ({
 		code,
 		name: inBoth(words, keyOf("name")),
@@ -84,6 +86,8 @@ export function codebookJson(source: FileSource): unknown {
 	}));
 	return {
 		...(isTable ? { table: { address }, releases } : releases[0]),
+		terms_of_use: terms,
+		license,
 		columns: dataColumns.map((column) => told(column, (part) => `dataroom:column.${column}.${part}`)),
 		measures: distinctOf(source, definitionsOf).map(({ item, releases: of }) => ({
 			...inReleases(of),

@@ -20,13 +20,15 @@ const inLanguages = ({ en, es }: { en: string; es: string }) => [
  * strings, since a reader that guesses takes the zero off a county's code.
  */
 export function csvwMetadata(source: FileSource): unknown {
-	const { title, publishedAt, address } = source;
+	const { title, publishedAt, address, terms, license } = source;
 	return {
 		"@context": ["http://www.w3.org/ns/csvw", { "@language": "en" }],
 		"@id": `${address}#tables`,
 		"dc:title": inLanguages(title),
 		"dc:identifier": address,
 		"dc:issued": { "@value": publishedAt, "@type": "xsd:dateTime" },
+		"dc:rights": inLanguages(terms),
+		...(license && { "dc:license": { "@id": license } }),
 		tables: packageTables(source).map(tableOf),
 	};
 }

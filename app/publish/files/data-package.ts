@@ -10,7 +10,7 @@ type Summed = Pick<ReleaseFile, "name"> & { bytes: number; sha256: string };
 
 /** The descriptor of the CSV files after Data Package and Table Schema, version 2.0. */
 export function dataPackage(source: FileSource, sums: readonly Summed[]): unknown {
-	const { name, address, title, about, version, publishedAt } = source;
+	const { name, address, title, about, version, publishedAt, terms, license } = source;
 	return {
 		$schema: `${profile}/datapackage.json`,
 		name,
@@ -20,6 +20,9 @@ export function dataPackage(source: FileSource, sums: readonly Summed[]): unknow
 		homepage: address,
 		version,
 		created: publishedAt,
+		// A property of our own, as the standard allows: terms are no licence.
+		termsOfUse: terms,
+		...(license && { licenses: [{ path: license }] }),
 		resources: packageTables(source).map((table) => resourceOf(table, source, sums)),
 	};
 }

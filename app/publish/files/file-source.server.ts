@@ -1,9 +1,11 @@
 import type { Language } from "#app/i18n/language.ts";
 import type { TFunction } from "i18next";
+import { env } from "#app/lib/env.server.ts";
 import { findAskedForm } from "../asked-form.server.ts";
 import { listDataRows } from "../data-file.server.ts";
 import { toRecord } from "../data-file.ts";
 import { findReleaseById, listAreas, listCrops, listMeasures } from "../releases.server.ts";
+import { termsOf } from "../terms.ts";
 import { type FileSource, inBoth } from "./release-file.ts";
 
 /** Everything that a release's files are made from, read as the reader; undefined for one that is withdrawn or not there. */
@@ -36,6 +38,8 @@ export async function findFileSource(
 		crops,
 		records: rows.map((row) => toRecord(release, row)),
 		words,
+		terms: termsOf(words),
+		license: env().DATA_LICENSE_URL ?? null,
 		address: `${site}/data/${release.number}`,
 		besides: [],
 	};

@@ -9,13 +9,16 @@ import type { FileSource } from "./release-file.ts";
  * each figure stands flat as `measure/crop`, in a table led by the release's number, null where there is none, with `measure/crop/status` to say why, since mapping
  * tools colour by a flat property.
  */
-export function cellsGeojson({ parts, records, isTable }: FileSource, kind: AreaKind): unknown {
+export function cellsGeojson({ parts, records, isTable, terms, license }: FileSource, kind: AreaKind): unknown {
 	const recordsOf = groupBy(
 		records.filter((record) => record.area_kind === kind),
 		(record) => record.area_code,
 	);
 	return {
 		type: "FeatureCollection",
+		// Members beside those of the standard, which it lets readers pass over.
+		terms_of_use: terms,
+		...(license && { license }),
 		features: shapesOf(parts, kind).map(({ area, shape }) => {
 			const cells = recordsOf.get(area.key) ?? [];
 			return {

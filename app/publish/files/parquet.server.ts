@@ -11,7 +11,7 @@ const types: Record<ColumnType, Pick<SchemaElement, "type" | "converted_type">> 
 };
 
 /** The cells as Apache Parquet: the rows of cells.csv in their order, what is empty there is null here. */
-export function cellsParquet({ records, parts, address }: FileSource): Uint8Array {
+export function cellsParquet({ records, parts, address, terms, license }: FileSource): Uint8Array {
 	const columnData: ColumnSource[] = dataColumns.map((name) => ({
 		name,
 		data: records.map((record) => (columnType(name) === "date" ? dateOf(record[name]) : record[name])),
@@ -27,6 +27,8 @@ export function cellsParquet({ records, parts, address }: FileSource): Uint8Arra
 	const kvMetadata = [
 		{ key: "release", value: parts.map(({ release }) => release.number).join(",") },
 		{ key: "address", value: address },
+		{ key: "terms_of_use", value: terms.en },
+		...(license ? [{ key: "license", value: license }] : []),
 	];
 	return new Uint8Array(parquetWriteBuffer({ columnData, schema, kvMetadata }));
 }

@@ -42,6 +42,9 @@ export type FileSource = {
 	words: Record<Language, TFunction>;
 	/** Where its page is, such as https://example.org/data/3. */
 	address: string;
+	/** On what terms it may be used, and the address of its licence where the network names one. */
+	terms: Words;
+	license: string | null;
 	/** What besides belongs to it. */
 	besides: readonly ReleaseFile[];
 };

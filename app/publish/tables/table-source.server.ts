@@ -1,10 +1,12 @@
 import { createHash } from "node:crypto";
 import type { Language } from "#app/i18n/language.ts";
 import type { TFunction } from "i18next";
+import { env } from "#app/lib/env.server.ts";
 import { findAskedForm } from "../asked-form.server.ts";
 import type { DataRecord } from "../data-file.ts";
 import { csvType, type FilePart, type FileSource, inBoth, textFile } from "../files/release-file.ts";
 import { findRelease, listAreas, listMeasures } from "../releases.server.ts";
+import { termsOf } from "../terms.ts";
 import { cropsOf, type TableCatalogue } from "./catalogue.ts";
 import { laidOutCsv } from "./laid-out.ts";
 import { searchOf, type TableSelection } from "./selection.ts";
@@ -46,6 +48,8 @@ export async function tableSource(
 		crops: cropsOf(catalogue, numbers).filter((crop) => crops.has(crop)),
 		records,
 		words,
+		terms: termsOf(words),
+		license: env().DATA_LICENSE_URL ?? null,
 		address,
 		besides: [textFile("table.csv", csvType, laidOutCsv(catalogue, selection, records))],
 	};

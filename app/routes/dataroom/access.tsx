@@ -56,7 +56,7 @@ export default function AskAccess({ loaderData, actionData }: Route.ComponentPro
 			</Page>
 		);
 	const lead = term
-		? t(term.holds ? "access.leadEnding" : "access.leadEnded", { day: day(term.lastDay) })
+		? `${t(term.holds ? "access.leadEnding" : "access.leadEnded", { day: day(term.lastDay) })} ${t(earlier ? "access.lookOver" : "access.say")}`
 		: t("access.lead");
 	return (
 		<Page title={t(term ? "access.titleAgain" : "access.title")} lead={lead} width="narrow">

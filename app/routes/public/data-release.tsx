@@ -35,6 +35,7 @@ import { followingOf } from "./parts/release/following.server.ts";
 import { Editions } from "./parts/release/release-editions.tsx";
 import { ReleaseFacts } from "./parts/release/release-facts.tsx";
 import { ReleaseFiles } from "./parts/release/release-files.tsx";
+import { TermsOfUse } from "./parts/release/terms-of-use.tsx";
 import { previewColumns, type PreviewRow, ReleasePreview } from "./parts/release/release-preview.tsx";
 
 const previewRows = 8;
@@ -72,6 +73,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		network: t("data.one.network"),
 		email: helpContact.email,
 		site: env().BASE_URL,
+		license: env().DATA_LICENSE_URL ?? null,
 		previous: previous && `${env().BASE_URL}/data/${previous.number}`,
 	};
 	return {
@@ -89,6 +91,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		following: await followingOf(context, release),
 		band: bands[releaseId] ?? null,
 		address: `${env().BASE_URL}/data/${release.number}`,
+		license: told.license,
 		described: release.withdrawn ? [] : [schemaOrgDataset(told), dcatDataset(told)],
 	};
 }
@@ -160,6 +163,9 @@ export default function DataRelease({ loaderData }: Route.ComponentProps) {
 			)}
 			<Section title={t("dataroom:follow.title")} id="follow">
 				<FollowRelease {...loaderData} />
+			</Section>
+			<Section title={t("dataroom:terms.title")} id="terms">
+				<TermsOfUse license={loaderData.license} />
 			</Section>
 			<Section title={t("data.one.cite")}>
 				<ReleaseCitation

@@ -34,7 +34,9 @@ export function AccessState({ term, request }: { term: Term | null; request: Ask
 	if (term)
 		return (
 			<Notice tone="attention" title={t(term.holds ? "home.endsTitle" : "home.endedTitle", { day: lastDay })}>
-				<p className="mb-3">{t(term.holds ? "home.endsBody" : "home.endedBody")}</p>
+				<p className="mb-3">
+					{t(term.holds ? "home.endsBody" : "home.endedBody")} {request && t("home.filledIn")}
+				</p>
 				{ask}
 			</Notice>
 		);
