@@ -33,7 +33,7 @@ export async function ensurePackages() {
 	if (existsSync(stamp) && readFileSync(stamp, "utf8") === hash) return "up to date";
 	const already = !existsSync(stamp) && isInstalled();
 	// The build's tools are development packages, which npm leaves out when NODE_ENV is production.
-	if (!already) await run("npm", ["ci", "--include=dev", "--no-progress"]);
+	if (!already) await run("npm", ["ci", "--include=dev", "--no-progress", "--no-audit", "--no-fund"]);
 	writeFileSync(stamp, hash);
 	return already ? "already there" : "installed";
 }

@@ -28,6 +28,7 @@ const shared: Record<string, string> = {
 	"desk/reports/:reportId": "reports tell released figures of the whole network",
 	"desk/reports/:reportId/versions": "the same",
 	"desk/reports/:reportId/photos": "the same",
+	"desk/reports/:reportId/photos/:photoId": "the same",
 	"desk/report-photos/:photoId": "the same",
 };
 /** What every action of the desk could be asked to do, as far as one form can say it. */

@@ -15,7 +15,7 @@ import { askForPhotos, answerAndSubmit, type Asked } from "#tests/database/photo
 import { addPerson, connectOwner, loadPlaces, useDatabase } from "#tests/database/surveys-fixture.ts";
 import { axeFindings, closePages, openBrowser, openPage, phone, signIn } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
-import { openWindow, readyForNoSignal } from "./offline/phone.ts";
+import { followLink, openWindow, readyForNoSignal } from "./offline/phone.ts";
 
 let stack: Stack;
 let browser: Browser;
@@ -75,9 +75,7 @@ async function openPhotos(asked: Asked, options: Parameters<typeof openPage>[1] 
 		createPersonalLink(trx, { ...asked.place, expiresAt }),
 	);
 	const page = await openPage(browser, { ...phone, ...options });
-	await page.goto(`${stack.baseUrl}/r/${token}`);
-	await page.locator("form button").last().click();
-	await page.waitForURL(addressesOf(asked).survey);
+	await followLink(page, `${stack.baseUrl}/r/${token}`);
 	await page.goto(addressesOf(asked).photos);
 	// The script that takes photos comes after the page, and brings the camera's button.
 	if (options.javaScriptEnabled !== false) await page.getByText("Take a photo").waitFor();
