@@ -6,6 +6,8 @@ export default defineConfig({
 	plugins: [tailwindcss(), ...(process.env.VITEST ? [] : [reactRouter()])],
 	// The scripts of growers' pages stand by themselves, like workers: each one file, with an address of its own.
 	worker: { format: "es" },
+	// Built in: of hundreds of files that each start would read, a few functions are used.
+	ssr: { noExternal: process.env.VITEST ? [] : ["@turf/turf", "kysely"] },
 	test: {
 		// Pictures are drawn in the style sheets' own colours.
 		css: { include: [/\.css\?raw$/] },

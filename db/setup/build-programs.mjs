@@ -7,6 +7,7 @@ await build({
 	root,
 	configFile: false,
 	logLevel: "warn",
+	ssr: { noExternal: ["@turf/turf", "kysely"] },
 	build: {
 		ssr: true,
 		target: "node20",

@@ -1,5 +1,5 @@
 import { parse } from "csv-parse/sync";
-import ExcelJS from "exceljs";
+import type ExcelJS from "exceljs";
 import {
 	type Cell,
 	cellOfText,
@@ -80,7 +80,9 @@ function delimiterOf(text: string): string {
 
 async function readBook(file: Buffer): Promise<Row[] | FileRefused> {
 	if (!unzipsWithin(file, mostInflated)) return "file_too_large";
-	const book = new ExcelJS.Workbook();
+	// Read when the first workbook comes, as where workbooks are made.
+	const { default: exceljs } = await import("exceljs");
+	const book = new exceljs.Workbook();
 	try {
 		await book.xlsx.load(file as unknown as ArrayBuffer);
 	} catch {

@@ -1,6 +1,6 @@
 import { PassThrough } from "node:stream";
 import { buffer } from "node:stream/consumers";
-import ExcelJS from "exceljs";
+import type ExcelJS from "exceljs";
 import { columnType, type DataColumn, dataColumns } from "../data-file.ts";
 import { codebookRows } from "./codebook.ts";
 import type { FileSource } from "./release-file.ts";
@@ -10,9 +10,11 @@ import type { FileSource } from "./release-file.ts";
  * texts, so that none runs as a formula and no code loses its zeros; a date is a real date.
  */
 export async function cellsWorkbook(source: FileSource): Promise<Uint8Array> {
+	// Read when the first workbook is made: it takes as long as a third of all else that starts a program.
+	const { default: exceljs } = await import("exceljs");
 	const sink = new PassThrough();
 	const taken = buffer(sink);
-	const book = new ExcelJS.stream.xlsx.WorkbookWriter({ stream: sink, useStyles: true });
+	const book = new exceljs.stream.xlsx.WorkbookWriter({ stream: sink, useStyles: true });
 	// The same source gives the same file, as far as the format lets it.
 	book.created = new Date(source.publishedAt);
 	book.modified = book.created;
