@@ -58,6 +58,8 @@ test("an answer is kept at the server as it is given, and the page says so", asy
 test("Back, the browser's and the page's own, loses nothing that was typed", async () => {
 	const grower = await asked();
 	const page = await openPhone(browser, grower);
+	await page.goto(grower.address);
+	await page.goto(grower.ask);
 	await page.fill("[name=harvested]", "61");
 	await page.getByRole("link", { name: "Back" }).click();
 	await page.waitForURL(grower.address);
