@@ -28,7 +28,7 @@ export async function besideSentence(
 	if (!releaseId || !measure) return null;
 	const wanted = crops.map((cropKey) => ({ measureKey: measure.key, cropKey }));
 	const beside = await findComparison(releaseId, county_fips, wanted);
-	// A figure without a likely range is left to the page, which says why it has none.
+	// A figure without a likely range is left to the page, which says that it has none.
 	const told = wanted.find((one) => typeof beside?.cells[comparisonKey(one)]?.lower === "number");
 	const cell = told && beside?.cells[comparisonKey(told)];
 	if (!told || !cell || cell.lower === null || cell.upper === null) return null;

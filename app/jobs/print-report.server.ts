@@ -7,7 +7,7 @@ import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Language } from "#app/i18n/language.ts";
 import { env } from "#app/lib/env.server.ts";
 import { log } from "#app/lib/log.server.ts";
-import { keepReportFile } from "#app/publish/drafting/report-files.server.ts";
+import { countTakenAway, keepReportFile } from "#app/publish/drafting/report-files.server.ts";
 import { findPublishedById } from "#app/publish/reports.server.ts";
 
 const run = promisify(execFile);
@@ -18,14 +18,14 @@ const mostSeconds = 90;
  * desk to see, and the page stands without a PDF.
  */
 export async function printReport({ reportId, language }: { reportId: string; language: Language }): Promise<void> {
-	const begunAt = new Date();
 	const report = await findPublishedById(reportId);
 	if (!report) return;
+	const goneBefore = await scopedTransaction({ kind: "none" }, (trx) => countTakenAway(trx, reportId));
 	const browser = await findBrowser();
 	const made = browser
 		? await print(browser, `${env().BASE_URL}/reports/${report.slug}?version=${report.version}`, language)
 		: ({ problem: "no_browser" } as const);
-	await scopedTransaction({ kind: "none" }, (trx) => keepReportFile(trx, reportId, language, made, begunAt));
+	await scopedTransaction({ kind: "none" }, (trx) => keepReportFile(trx, reportId, language, made, goneBefore));
 	if ("problem" in made) log.warn({ reportId, language, problem: made.problem }, "no PDF of a report");
 }
 

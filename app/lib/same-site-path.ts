@@ -4,7 +4,7 @@
  */
 export function sameSitePath(value: unknown, fallback = "/"): string {
 	if (typeof value !== "string" || value.length > 2000) return fallback;
-	// oxlint-disable-next-line no-control-regex
+	// oxlint-disable-next-line no-control-regex -- control characters are what is looked for
 	if (!/^\/(?![/\\])/.test(value) || /[\u0000-\u001f\u007f\\]/.test(value)) return fallback;
 	const base = "https://this.site.invalid";
 	if (!URL.canParse(value, base)) return fallback;

@@ -36,7 +36,6 @@ const kept = ([name]) =>
 		"COORDINATOR_SUBJECT",
 		"DATA_LICENSE_URL",
 		"PHOTO_DIR",
-		"DATA_LICENSE_URL",
 	].includes(name);
 const cleanEnvironment = Object.fromEntries(Object.entries(process.env).filter(kept));
 

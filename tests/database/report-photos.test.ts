@@ -5,7 +5,7 @@ import { afterAll, beforeAll, expect, test } from "vitest";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { decideReport } from "#app/jobs/decide-report.server.ts";
 import { takeReportPhotoAway } from "#app/jobs/publish-report.server.ts";
-import { keepReportFile } from "#app/publish/drafting/report-files.server.ts";
+import { countTakenAway, keepReportFile } from "#app/publish/drafting/report-files.server.ts";
 import { startCorrection } from "#app/publish/drafting/report-correction.server.ts";
 import { addReportPhoto, findDraftPhoto, listReportPhotos } from "#app/publish/drafting/report-photos.server.ts";
 import { findReport, saveReport, submitReport } from "#app/publish/drafting/reports.server.ts";
@@ -179,11 +179,11 @@ test("a photo taken away is gone from page, PDF and database, and its place says
 	const { reportId, releaseId, content, photoId } = await draft("Taken away");
 	const release = (await findReleaseById(releaseId))!;
 	await publish(reportId);
-	await desk((trx) => keepReportFile(trx, reportId, "es", printed));
+	await desk((trx) => keepReportFile(trx, reportId, "es", printed, 0));
 	expect([(await served(photoId)).status, await findReportFile(reportId, "es")]).toEqual([200, printed.bytes]);
 	await desk((trx) => sql`delete from graphile_worker._private_jobs`.execute(trx));
 
-	const begunAt = new Date();
+	const goneBefore = await desk((trx) => countTakenAway(trx, reportId));
 	expect(await takeAway(reportId, photoId)).toBe("taken_away");
 	await expect(served(photoId)).rejects.toMatchObject(notFound);
 	expect(await desk((trx) => findDraftPhoto(trx, author, photoId))).toBeUndefined();
@@ -198,9 +198,9 @@ test("a photo taken away is gone from page, PDF and database, and its place says
 	expect(JSON.stringify(told)).not.toContain("frozen blossom");
 
 	// A print that was under way may show it still, and is not kept; the next one is.
-	await desk((trx) => keepReportFile(trx, reportId, "es", printed, begunAt));
+	await desk((trx) => keepReportFile(trx, reportId, "es", printed, goneBefore));
 	expect(await findReportFile(reportId, "es")).toBeUndefined();
-	await desk((trx) => keepReportFile(trx, reportId, "es", { bytes: Buffer.from("%PDF-1.7") }));
+	await desk((trx) => keepReportFile(trx, reportId, "es", { bytes: Buffer.from("%PDF-1.7") }, goneBefore + 1));
 	expect(await findReportFile(reportId, "es")).toEqual(Buffer.from("%PDF-1.7"));
 
 	// Twice is harmless, and tells the log nothing new; nothing brings the picture back.
@@ -219,7 +219,7 @@ test("a photo goes by its own report alone, by whoever approves reports too, and
 	expect((await served(one.photoId)).status).toBe(200);
 	const next = await desk((trx) => startCorrection(trx, author, one.reportId));
 	if (next.outcome !== "started") throw new Error("a published report can be corrected");
-	await desk((trx) => keepReportFile(trx, one.reportId, "en", printed));
+	await desk((trx) => keepReportFile(trx, one.reportId, "en", printed, 0));
 	const taken = await desk((trx) =>
 		takeReportPhotoAway(trx, coordinator, next.reportId, one.photoId, "shown_by_mistake"),
 	);

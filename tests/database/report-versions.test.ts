@@ -215,7 +215,7 @@ test("comments are kept with block and author and are dealt with once; a publish
 test("nothing of a draft is a reader's: no row, no file, no comment, no earlier save", async () => {
 	const reportId = await handIn("Secret draft");
 	const bytes = Buffer.from("%PDF-1.7 of a draft");
-	await desk((trx) => keepReportFile(trx, reportId, "en", { bytes }));
+	await desk((trx) => keepReportFile(trx, reportId, "en", { bytes }, 0));
 	await desk((trx) => addComment(trx, coordinator, reportId, { body: "Not for readers", blockId: null }));
 	expect(await count(owner, "publish.report_file where report_id = $1", [reportId])).toBe(1);
 	expect(await listReportFiles(reportId)).toEqual([]);
@@ -234,7 +234,7 @@ test("nothing of a draft is a reader's: no row, no file, no comment, no earlier 
 // The last test of the file, as a withdrawal stays.
 test("the printed report of a release that was withdrawn is no reader's any more, though it is there", async () => {
 	const reportId = await handIn("Withdrawn");
-	await desk((trx) => keepReportFile(trx, reportId, "en", { bytes: Buffer.from("%PDF-1.7 with figures") }));
+	await desk((trx) => keepReportFile(trx, reportId, "en", { bytes: Buffer.from("%PDF-1.7 with figures") }, 0));
 	await decide(reportId, { intent: "publish" });
 	await using reader = await connectOwner(database.readerUrl);
 	const seen = async () =>

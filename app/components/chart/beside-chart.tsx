@@ -5,6 +5,7 @@ import { classes } from "#app/components/classes.ts";
 import { markFill } from "./chart-fills.ts";
 import { careClass, decimalsOf, ends, type Shown } from "./chart-look.ts";
 import { bandHeight, RowChart, Whisker } from "./row-chart.tsx";
+import { rangeOf } from "#app/lib/likely-range.ts";
 import { scaleOf } from "./scale.ts";
 
 type BesideChartProps = {
@@ -19,8 +20,8 @@ type BesideChartProps = {
 export function BesideChart({ own, area, measure, alternative }: BesideChartProps) {
 	const format = useFormat();
 	const days = measure.unit === "day";
-	const [lower, upper] = ends(area.cell);
-	const values = [own.value, area.cell.value ?? 0, lower, upper];
+	const range = rangeOf(area.cell);
+	const values = [own.value, area.cell.value ?? 0, ...ends(area.cell)];
 	const scale = scaleOf(days ? values : [...values, 0], { zero: !days, days, wanted: days ? 2 : 4 });
 	const rows = [
 		{ key: "own", label: own.label, shown: own.value, fill: "fill-damson" },
@@ -46,7 +47,7 @@ export function BesideChart({ own, area, measure, alternative }: BesideChartProp
 						{!days && (
 							<rect x={x(0)} y={top} width={Math.max(0.5, x(shown) - x(0))} height={bandHeight} className={look} />
 						)}
-						{key === "area" && <Whisker from={x(lower)} to={x(upper)} y={y} />}
+						{key === "area" && range && <Whisker from={x(range[0])} to={x(range[1])} y={y} />}
 						{days && <circle cx={x(shown)} cy={y} r={6} className={look} />}
 					</>
 				);

@@ -5,6 +5,7 @@ import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import { paleFill, partFill } from "./chart-fills.ts";
 import { decimalsOf, ends, lookOf, numbered, useValueText } from "./chart-look.ts";
 import { bandHeight, RowChart, Whisker } from "./row-chart.tsx";
+import { rangeOf } from "#app/lib/likely-range.ts";
 import { scaleOf } from "./scale.ts";
 
 type CauseBarsProps = { drawn: Extract<ResolvedChart, { chart: "causes" }>; alternative: string };
@@ -29,7 +30,7 @@ export function CauseBars({ drawn: { measure, parts, rows }, alternative }: Caus
 			alternative={alternative}
 			mark={(index, top, x) => {
 				const row = rows[index]!;
-				const [lower, upper] = ends(row.whole);
+				const range = rangeOf(row.whole);
 				const shares = parts.map((_, place) => {
 					const cell = row.parts[place];
 					return cell && lookOf(cell) === "number" ? (cell.value ?? 0) : 0;
@@ -49,7 +50,7 @@ export function CauseBars({ drawn: { measure, parts, rows }, alternative }: Caus
 								className={classes("chart-edge", partFill(measure.hue, place))}
 							/>
 						))}
-						<Whisker from={x(lower)} to={x(upper)} y={top + bandHeight / 2} />
+						{range && <Whisker from={x(range[0])} to={x(range[1])} y={top + bandHeight / 2} />}
 					</>
 				);
 			}}

@@ -1,6 +1,7 @@
 import { useTranslation } from "react-i18next";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { FigureShape } from "#app/lib/format.ts";
+import { rangeOf } from "#app/lib/likely-range.ts";
 import type { Cell } from "#app/publish/cell.ts";
 
 /** One figure as a chart draws it. */
@@ -10,8 +11,8 @@ export type Look = "number" | "withheld" | "rough";
 export const lookOf = ({ status, value, steadiness }: Shown): Look =>
 	status === "withheld" ? "withheld" : value === null || steadiness === "rough" ? "rough" : "number";
 export const numbered = <C extends Shown>(cells: C[]) => cells.filter((cell) => lookOf(cell) === "number");
-/** The likely range; a figure without one is a point. */
-export const ends = (cell: Shown): [number, number] => [cell.lower ?? cell.value ?? 0, cell.upper ?? cell.value ?? 0];
+/** What a scale must hold of a figure. */
+export const ends = (cell: Shown): [number, number] => rangeOf(cell) ?? [cell.value ?? 0, cell.value ?? 0];
 export const careClass = (cell: Shown) => cell.steadiness === "care" && "chart-care";
 export const decimalsOf = (ticks: number[]) =>
 	Math.max(0, ...ticks.map((tick) => `${tick}`.split(".")[1]?.length ?? 0));

@@ -1,8 +1,9 @@
 import { useFormat } from "#app/i18n/use-format.ts";
 import { classes } from "#app/components/classes.ts";
+import { rangeOf } from "#app/lib/likely-range.ts";
 import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import { markFill } from "./chart-fills.ts";
-import { decimalsOf } from "./chart-look.ts";
+import { decimalsOf, ends } from "./chart-look.ts";
 import { chartWidth } from "./row-chart.tsx";
 import { placeOn, scaleOf } from "./scale.ts";
 
@@ -15,8 +16,8 @@ export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLine
 	const format = useFormat();
 	const told = rows.filter(({ cell }) => cell.value !== null && cell.steadiness !== "rough");
 	const days = measure.unit === "day";
-	const ends = told.flatMap(({ cell }) => [cell.lower ?? cell.value ?? 0, cell.upper ?? cell.value ?? 0]);
-	const scale = scaleOf(ends.concat(days ? [] : [0]), { zero: !days, days, wanted: 3 });
+	const held = told.flatMap(({ cell }) => ends(cell));
+	const scale = scaleOf(held.concat(days ? [] : [0]), { zero: !days, days, wanted: 3 });
 	const y = placeOn(scale, bottom, top);
 	const [first, last] = [rows[0]?.season ?? 0, rows.at(-1)?.season ?? 0];
 	const x = (season: number) =>
@@ -39,13 +40,15 @@ export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLine
 			))}
 			<path d={path} className="chart-line" />
 			{told.map(({ season, cell }) => {
-				const [lower, upper] = [y(cell.lower ?? cell.value ?? 0), y(cell.upper ?? cell.value ?? 0)];
+				const [lower, upper] = ends(cell).map(y) as [number, number];
 				return (
 					<g key={season}>
-						<path
-							d={`M${x(season) - 4} ${upper}h8M${x(season)} ${upper}V${lower}M${x(season) - 4} ${lower}h8`}
-							className="chart-whisker"
-						/>
+						{rangeOf(cell) && (
+							<path
+								d={`M${x(season) - 4} ${upper}h8M${x(season)} ${upper}V${lower}M${x(season) - 4} ${lower}h8`}
+								className="chart-whisker"
+							/>
+						)}
 						<circle
 							{...{ cx: x(season), cy: y(cell.value ?? 0), r: 6 }}
 							className={classes("chart-edge", markFill[measure.hue], cell.steadiness === "care" && "chart-care")}

@@ -3,9 +3,8 @@ import { useAreaName } from "#app/components/map/area-name.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
-import { ends, numbered, type Shown } from "./chart-look.ts";
-
-const apart = (a: Shown, b: Shown) => ends(a)[0] > ends(b)[1] || ends(a)[1] < ends(b)[0];
+import { numbered, type Shown } from "./chart-look.ts";
+import { isApart } from "#app/lib/likely-range.ts";
 
 /** What a chart shows first, as a sentence. Figures whose likely ranges overlap are never told as if they differed for sure. */
 export function useFinding() {
@@ -70,7 +69,7 @@ function useRanked() {
 		};
 		const end = drawn.measure.unit === "day" ? "early" : drawn.worse === "less" ? "low" : "high";
 		if (!second) return t("chart.finding.only", said);
-		if (apart(first, second)) return t(`chart.finding.${end}`, said);
+		if (isApart(first, second)) return t(`chart.finding.${end}`, said);
 		return t(`chart.finding.${end}_close`, { ...said, second: second.name });
 	};
 }
@@ -95,7 +94,7 @@ function useSeasonFinding() {
 			last: last.season,
 		};
 		const end = measure.unit === "day" ? ["earlier", "later"] : ["less", "more"];
-		const key = apart(now.cell, last.cell) ? end[(now.cell.value ?? 0) < (last.cell.value ?? 0) ? 0 : 1] : "alike";
+		const key = isApart(now.cell, last.cell) ? end[(now.cell.value ?? 0) < (last.cell.value ?? 0) ? 0 : 1] : "alike";
 		return t(`chart.finding.season_${key}`, { ...said, ...before });
 	};
 }

@@ -6,6 +6,7 @@ import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import { markFill } from "./chart-fills.ts";
 import { careClass, decimalsOf, ends, lookOf, numbered, type Shown, useValueText } from "./chart-look.ts";
 import { bandHeight, RowChart, Whisker } from "./row-chart.tsx";
+import { rangeOf } from "#app/lib/likely-range.ts";
 import { scaleOf } from "./scale.ts";
 
 type Drawn<K extends "crops" | "areas"> = { drawn: Extract<ResolvedChart, { chart: K }>; alternative: string };
@@ -70,14 +71,14 @@ function ValueRows({ rows: all, measure, bars, alternative }: ValueRowsProps) {
 			mark={(index, top, x) => {
 				const { cell } = rows[index]!;
 				const value = x(cell.value ?? 0);
-				const [lower, upper] = ends(cell);
+				const range = rangeOf(cell);
 				const y = top + bandHeight / 2;
 				const look = classes("chart-edge", markFill[measure.hue], careClass(cell));
 				const bar = { x: x(0), y: top, width: Math.max(0.5, value - x(0)), height: bandHeight };
 				return (
 					<>
 						{bars && <rect {...bar} className={look} />}
-						<Whisker from={x(lower)} to={x(upper)} y={y} />
+						{range && <Whisker from={x(range[0])} to={x(range[1])} y={y} />}
 						{!bars && <circle cx={value} cy={y} r={6} className={look} />}
 					</>
 				);

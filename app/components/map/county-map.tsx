@@ -101,7 +101,7 @@ export function CountyMap(props: CountyMapProps) {
 					aria-label={drawn.label}
 					aria-roledescription={t("map.live.role")}
 					aria-describedby={hintId}
-					// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex
+					// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex -- its arrow keys work while it is in focus
 					tabIndex={ready ? 0 : -1}
 					onKeyDown={onKeyDown}
 				>

@@ -44,7 +44,7 @@ export function PinMap({ countiesAddress, label, hint, pin, onPin, told }: PinMa
 					role="application"
 					aria-label={label}
 					aria-describedby={hintId}
-					// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex
+					// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex -- its arrow keys work while it is in focus
 					tabIndex={ready ? 0 : -1}
 					onKeyDown={onKeyDown}
 				>

@@ -33,7 +33,7 @@ export function ToldText({ told, language }: { told: ToldWords; language?: strin
 				// oxlint-disable-next-line react/no-array-index-key
 				<p key={index} className="my-3 max-w-prose first:mt-0">
 					{parts.map((part, place) => (
-						// oxlint-disable-next-line react/no-array-index-key
+						// oxlint-disable-next-line react/no-array-index-key -- nor have their parts
 						<Fragment key={place}>{part.kind === "text" ? part.text : <strong>{words(part.figure)}</strong>}</Fragment>
 					))}
 				</p>

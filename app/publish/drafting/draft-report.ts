@@ -1,3 +1,4 @@
+import { isApart } from "#app/lib/likely-range.ts";
 import { type Cell, type CropCell, lookOf } from "../cell.ts";
 import { neededCautions } from "../cautions.ts";
 import { partsOfLoss, worstFirst } from "../finding.ts";
@@ -33,7 +34,7 @@ export function draftReport(input: DraftInput): ReportContent {
 	const sentence = both(input.say);
 	const about = { season: release.season };
 	// What the likely ranges do not bear is never said.
-	const close = worst && second && overlap(worst, second) ? second : undefined;
+	const close = worst && second && !isApart(worst, second) ? second : undefined;
 	const lead = worst && {
 		...about,
 		crop: worst.cropKey,
@@ -62,12 +63,6 @@ export function draftReport(input: DraftInput): ReportContent {
 		summary: leading,
 		blocks: blocks.map((block, index) => Object.assign({ id: `b${index + 1}` }, block) as Block),
 	};
-}
-
-/** Whether two likely ranges have a value in common. A figure without a range is not known to differ from any other. */
-function overlap(a: CropCell, b: CropCell): boolean {
-	if (a.lower === null || a.upper === null || b.lower === null || b.upper === null) return true;
-	return a.lower <= b.upper && b.lower <= a.upper;
 }
 
 const counted = (status: string) => referenceText({ measure: cellCounts, crop: status, area: "county" });
