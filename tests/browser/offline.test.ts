@@ -94,6 +94,22 @@ test("without signal it is kept on the phone, also when the window is closed, an
 	expect(await heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 71 });
 });
 
+test("a page that was drawn before the server had an answer shows it all the same, and goes on from it", async () => {
+	const grower = await asked();
+	// Without the service worker, what the test answers in the server's place is what the page gets.
+	const page = await openPhone(browser, grower, { serviceWorkers: "block" });
+	const drawnBefore = await (await page.request.get(grower.ask)).body();
+	await page.fill("[name=harvested]", "55");
+	await word(page).getByText("are kept", { exact: false }).waitFor();
+	await page.route(grower.ask, (route) =>
+		route.fulfill({ body: drawnBefore, contentType: "text/html; charset=utf-8" }),
+	);
+	await page.goto(grower.ask);
+	await expect.poll(() => page.inputValue("[name=harvested]")).toBe("55");
+	await page.fill("[name=harvested]", "56");
+	await expect.poll(() => heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 56 });
+});
+
 test("two phones change one screen: each is told, both answers are shown, and one is chosen", async () => {
 	const grower = await asked();
 	const one = await openPhone(browser, grower);

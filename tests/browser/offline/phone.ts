@@ -23,7 +23,7 @@ export async function askByLink(owner: Client, associate: Associate, baseUrl: st
 export type Asked = Awaited<ReturnType<typeof askByLink>>;
 
 /** A phone of the grower's own on which the link has been opened. */
-export async function openPhone(browser: Browser, asked: Asked, options: { language?: string } = {}) {
+export async function openPhone(browser: Browser, asked: Asked, options: Parameters<typeof openPage>[1] = {}) {
 	const page = await openPage(browser, { ...phone, ...options });
 	await followLink(page, await asked.link());
 	await page.goto(asked.ask);

@@ -64,7 +64,8 @@ async function showHeld(ask: AskPage): Promise<void> {
 	const { store, page, form } = ask;
 	ask.held = await change(store, page.responseId, (outbox) => settle(outbox, page.told.changes));
 	const step = ask.held && typedStep(ask.held.outbox, page.stepKey);
-	if (!step || step.state === "kept") return;
+	// What the server has by now and this page still lacks was sent while the page was on its way: it is shown, too.
+	if (!step) return;
 	ask.from = step.changeId;
 	const isUntouched = JSON.stringify(valuesIn(form)) === ask.recorded;
 	if (isUntouched && step.language === page.language) {
