@@ -31,8 +31,8 @@ try {
 	// Pages and the map are measured in a browser.
 	const parts = wanted.filter((word) => !word.startsWith("-"));
 	const looks = parts.length === 0 || ["pages", "map"].some((part) => parts.includes(part));
-	// The built pages are also asked for while shields are chosen.
-	if (looks || parts.includes("protect")) await ensureBuild();
+	// Only these ask nothing of the built product.
+	if (parts.length === 0 || parts.some((part) => !["tally", "submission"].includes(part))) await ensureBuild();
 	const browser = looks ? { CHROMIUM_PATH: await ensureChromium() } : {};
 	const env = { ...process.env, ...browser, ...(await addresses()) };
 	const args = ["--import", "tsx", "tests/bench/bench.ts", ...wanted];

@@ -29,7 +29,7 @@ async function publicPages({ print, runs }: Bench): Promise<void> {
 	await using owner = await connectOwner(stack.database.ownerUrl);
 	const { rows } = await owner.query<{ slug: string; number: number }>(
 		`select slug, number from publish.report join release.release using (release_id)
-		where state = 'published' order by published_at desc limit 1`,
+		where state = 'published' order by report.published_at desc limit 1`,
 	);
 	const { slug, number } = rows[0]!;
 	const looked: [string, string][] = [
