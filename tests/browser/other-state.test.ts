@@ -1,13 +1,10 @@
 // An associate of one state asks for another state's growers, answers and surveys at every address of the desk, as the
 // table of routes lists them: each is refused as if it were not there, and nothing is written.
-import { readFileSync } from "node:fs";
-import { join } from "node:path";
-import type { RouteConfigEntry } from "@react-router/dev/routes";
 import type { Browser, Page } from "playwright-core";
 import { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
-import routes from "#app/routes.ts";
 import { readyForms } from "#app/collect/forms/ready-forms.ts";
+import { filled, listAddresses, paramsOf } from "#tests/helpers/addresses.ts";
 import { openBrowser, openPage, signIn } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
 import { fillWithHolders } from "#tests/walls/row-owners.ts";
@@ -98,23 +95,8 @@ afterAll(async () => {
 	await stack?.[Symbol.asyncDispose]();
 });
 
-type Address = { path: string; acts: boolean };
-
-function listAddresses(entries: RouteConfigEntry[], before = ""): Address[] {
-	return entries.flatMap(({ path = "", file, children }) => {
-		const here = [before, path].filter(Boolean).join("/");
-		const source = readFileSync(join(import.meta.dirname, "../../app", file), "utf8");
-		const acts = /export (?:async function action\b|const action\b|function action\b)/.test(source);
-		const own = children?.length ? [] : [{ path: here, acts }];
-		return [...own, ...listAddresses(children ?? [], here)];
-	});
-}
-
 const addresses = async () =>
-	listAddresses(await routes).filter(({ path }) => path.startsWith("desk/") && path.includes(":"));
-const paramsOf = (path: string) => [...path.matchAll(/:(\w+)/g)].map((match) => match[1]!);
-const filled = (path: string, ids: Record<string, string>) =>
-	`/${path.replaceAll("?", "").replace(/:(\w+)/g, (_, name: string) => ids[name] ?? "")}`;
+	(await listAddresses()).filter(({ path }) => path.startsWith("desk/") && path.includes(":"));
 
 /** Every way to name what is theirs: their own survey, and in the survey that both states share their growers and answers. */
 function waysIn(path: string): string[] {

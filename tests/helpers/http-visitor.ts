@@ -27,6 +27,7 @@ export function httpVisitor(baseUrl: string, language = "en", headers: Record<st
 		};
 	}
 	return {
+		send,
 		get: (address: string) => send(address),
 		post: (address: string, fields: Record<string, string>) =>
 			send(address, { method: "POST", body: new URLSearchParams(fields) }),
