@@ -10,5 +10,6 @@ export const parts: Record<string, () => Promise<Part>> = {
 	pages: async () => (await import("./pages.ts")).pages,
 	map: async () => (await import("./map.ts")).map,
 	api: async () => (await import("./api.ts")).api,
+	desk: async () => (await import("./desk.ts")).desk,
 	protect: async () => (await import("./protect.ts")).protect,
 };
