@@ -1,4 +1,4 @@
-import { domainDegreesOfFreedom, domainStrata, domainTotals, type StratumTally } from "#app/estimate/domain.ts";
+import { domainDegreesOfFreedom, domainTotals, strataWithin, type StratumTally } from "#app/estimate/domain.ts";
 import { estimateOf, type Figure } from "#app/estimate/estimators.ts";
 import { normalInterval, proportionInterval, type Interval } from "#app/estimate/interval.ts";
 import { linearize, type EstimateKind } from "#app/estimate/linearize.ts";
@@ -46,13 +46,13 @@ export function estimateCell(
 	cutOffs?: SteadinessCutOffs,
 ): Estimate {
 	const rows = [...tallies].filter((tally) => tally.n > 0);
-	const strata = domainStrata(frame, rows);
+	const strata = strataWithin(frame, rows);
 	return cellOf(
 		measure,
 		{
 			respondents: domainTotals(strata).respondents,
 			joins: joinsAmong(frame, new Set(rows.map((tally) => tally.stratumKey))),
-			everybody: strata.every((stratum) => stratum.domain.n === 0 || stratum.samplingFraction === 1),
+			everybody: strata.every((stratum) => stratum.samplingFraction === 1),
 			freedom: domainDegreesOfFreedom(strata),
 			value: () => linearize(measure.kind, strata)?.value ?? null,
 			figure: () => estimateOf(measure.kind, strata),

@@ -1,6 +1,6 @@
 import { addMoments, emptyMoments, type Moments } from "#app/lib/moments.ts";
 import type { Tally } from "#app/tally/tally.ts";
-import type { StrataFrame } from "#app/estimate/strata.ts";
+import type { JoinedStratum, StrataFrame } from "#app/estimate/strata.ts";
 
 /**
  * One stratum of the design seen from a domain (an area, or any part of the respondents).
@@ -33,24 +33,51 @@ export type DomainTotals = { respondents: number; count: number; totalY: number;
  * @throws {RangeError} when a tally's stratum is not in the frame, or the area has more respondents than the stratum.
  */
 export function domainStrata(frame: StrataFrame, tallies: Iterable<StratumTally>): DomainStratum[] {
-	const place = new Map(frame.strata.flatMap((stratum, i) => stratum.stratumKeys.map((key) => [key, i] as const)));
-	const inside: Moments[] = frame.strata.map(() => emptyMoments);
+	const inside = insideStrata(frame, tallies);
+	return frame.strata
+		.map((stratum, i) => seenFrom(stratum, inside.get(i) ?? emptyMoments))
+		.filter(({ respondents }) => respondents > 0);
+}
+
+/**
+ * Those of `domainStrata` that hold somebody of the area, in the same order. To totals and variances the others add nothing,
+ * and a county lies in a few of hundreds.
+ */
+export function strataWithin(frame: StrataFrame, tallies: Iterable<StratumTally>): DomainStratum[] {
+	const inside = [...insideStrata(frame, tallies)].toSorted(([one], [other]) => one - other);
+	return inside.map(([i, moments]) => seenFrom(frame.strata[i]!, moments));
+}
+
+/** The moments of an area's respondents by their stratum's place in the frame. */
+function insideStrata(frame: StrataFrame, tallies: Iterable<StratumTally>): Map<number, Moments> {
+	const places = placesIn(frame);
+	const inside = new Map<number, Moments>();
 	for (const tally of tallies) {
 		if (tally.n === 0) continue;
-		const i = place.get(tally.stratumKey);
+		const i = places.get(tally.stratumKey);
 		if (i === undefined) throw new RangeError(`stratum ${tally.stratumKey} has a tally but is not in the frame`);
-		inside[i] = addMoments(inside[i]!, tally);
+		inside.set(i, addMoments(inside.get(i) ?? emptyMoments, tally));
 	}
-	const strata: DomainStratum[] = [];
-	for (const [i, { stratumKeys, frameSize, respondents }] of frame.strata.entries()) {
-		const domain = inside[i]!;
-		if (domain.n > respondents) {
-			throw new RangeError(`stratum ${stratumKeys.join("+")} has ${respondents} respondents, its area ${domain.n}`);
-		}
-		if (respondents === 0) continue;
-		strata.push({ weight: frameSize / respondents, samplingFraction: respondents / frameSize, respondents, domain });
+	return inside;
+}
+
+/** Told once a frame, as thousands of areas are looked at with one. */
+const knownPlaces = new WeakMap<StrataFrame, Map<string, number>>();
+
+function placesIn(frame: StrataFrame): Map<string, number> {
+	let places = knownPlaces.get(frame);
+	if (!places) {
+		places = new Map(frame.strata.flatMap(({ stratumKeys }, i) => stratumKeys.map((key) => [key, i] as const)));
+		knownPlaces.set(frame, places);
 	}
-	return strata;
+	return places;
+}
+
+function seenFrom({ stratumKeys, frameSize, respondents }: JoinedStratum, domain: Moments): DomainStratum {
+	if (domain.n > respondents) {
+		throw new RangeError(`stratum ${stratumKeys.join("+")} has ${respondents} respondents, its area ${domain.n}`);
+	}
+	return { weight: frameSize / respondents, samplingFraction: respondents / frameSize, respondents, domain };
 }
 
 /** Weighted totals of a domain. `count` estimates its operations on the frame; all are 0 where nobody answered. */
