@@ -185,6 +185,14 @@ async function clearChecks(survey: string): Promise<void> {
 	await press("See what it changes");
 	await page.getByRole("columnheader", { name: "With your correction" }).waitFor();
 	expect(await one("select count(*)::int as n from collect.correction")).toEqual({ n: 0 });
+	// What is listed as moved moves.
+	const moves = await page
+		.locator("#estimates tbody tr")
+		.evaluateAll((rows) =>
+			rows.map((row) => [...row.querySelectorAll("td")].slice(-2).map((cell) => cell.textContent)),
+		);
+	expect(moves.length).toBeGreaterThan(0);
+	for (const [before, after] of moves) expect(after).not.toBe(before);
 	await accessible();
 	await press("Save the correction");
 	await page.getByText("The correction counts from now on.").waitFor();

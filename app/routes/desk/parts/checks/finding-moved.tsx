@@ -13,18 +13,21 @@ export function FindingMoved({ moved }: { moved: FindingView["moved"] }) {
 	const format = useFormat();
 	const nameArea = useAreaName();
 	// A decimal more than is published, as one answer can move less than the last digit shown.
-	const figure = ({ values, measure }: MovedEstimate, at: number) => {
+	const told = ({ values, measure }: MovedEstimate, at: number): string | null => {
 		const value = values[at] ?? null;
-		const shape = { ...measure, decimals: measure.decimals + 1 };
-		return value === null ? <span className="text-quiet">{t("moved.noFigure")}</span> : format.figure(value, shape);
+		return value === null ? null : format.figure(value, { ...measure, decimals: measure.decimals + 1 });
 	};
+	const figure = (row: MovedEstimate, at: number) =>
+		told(row, at) ?? <span className="text-quiet">{t("moved.noFigure")}</span>;
 	if (moved.rows.length === 0) return null;
+	const rows = moved.rows.filter((row) => told(row, 0) !== told(row, 1));
+	const stay = moved.rows.length - rows.length;
 	return (
 		<Section title={t("moved.title")} id="estimates">
 			<p className="mb-3 max-w-prose">{t(`moved.lead.${moved.to}`)}</p>
 			<DataTable
 				caption={t("moved.caption", { crop: t(`common:crop.${moved.cropKey}`) })}
-				rows={moved.rows}
+				rows={rows}
 				rowKey={({ area, measure }) => `${measure.key} ${area.key}`}
 				columns={[
 					{ key: "measure", header: t("moved.measure"), cell: ({ measure }) => wordsIn(measure.label, i18n.language) },
@@ -37,7 +40,13 @@ export function FindingMoved({ moved }: { moved: FindingView["moved"] }) {
 						cell: (row) => <strong>{figure(row, 1)}</strong>,
 					},
 				]}
+				empty={<p>{t("moved.unmoved")}</p>}
 			/>
+			{rows.length > 0 && stay > 0 && (
+				<p className="mt-3 max-w-prose text-sm text-quiet">
+					{t("moved.others", { count: stay, value: format.number(stay) })}
+				</p>
+			)}
 		</Section>
 	);
 }

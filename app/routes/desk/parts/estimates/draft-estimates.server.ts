@@ -28,6 +28,7 @@ export async function readDraftInputs(trx: Trx, viewer: Associate, surveyId: str
 		survey,
 		surveyId,
 		weighting: survey.weighting,
+		definition,
 		held,
 		measures: definition.measures.filter((measure) => !measure.base),
 		areas: held.length > 1 ? [region, ...inTreeOrder(branches)] : inTreeOrder(branches),

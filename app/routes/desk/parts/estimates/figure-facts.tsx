@@ -2,6 +2,7 @@ import { useTranslation } from "react-i18next";
 import { DescriptionList } from "#app/components/description-list.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import type { MeasureUnit } from "#app/lib/format.ts";
 import { FigureInterval, FigureSteadiness, useSpread } from "./estimate-figure.tsx";
 import { type BarScale, daysScale, type Figure } from "./estimate-rows.ts";
 import type { ToldFigure } from "./figure-origin.server.ts";
@@ -48,13 +49,14 @@ function scaleOf({ value, lower, upper, quartiles }: Figure, unit: string): BarS
 const intervals = { ratio: "normal", mean: "normal", total: "normal", proportion: "logit", day: "inverted" } as const;
 
 /** The formula in words, and the two sums that it is of. */
-export function FigureFormula({ told: { origin, measure } }: { told: ToldFigure }) {
+export function FigureFormula({ told: { origin, measure, units } }: { told: ToldFigure }) {
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	const { totals, calibrations } = origin;
 	const isCalibrated = calibrations.length > 0;
 	const quotient = measure.kind === "ratio" || measure.kind === "proportion";
 	const isDay = measure.kind === "day";
+	const inUnit = (sum: number, unit: MeasureUnit) => format.figure(sum, { ...measure, unit, decimals: 1 });
 	return (
 		<Section title={t("origin.formula.title")}>
 			<ol className="mb-5 ml-5 max-w-prose list-decimal space-y-2">
@@ -66,9 +68,9 @@ export function FigureFormula({ told: { origin, measure } }: { told: ToldFigure 
 			</ol>
 			<DescriptionList
 				items={[
-					{ term: t("origin.weightedCount"), detail: format.number(totals.count, 1) },
-					{ term: t(isDay ? "origin.weightedBefore" : "origin.weightedY"), detail: format.number(totals.y, 1) },
-					...(quotient ? [{ term: t("origin.weightedX"), detail: format.number(totals.x, 1) }] : []),
+					{ term: t("origin.weightedCount"), detail: inUnit(totals.count, "operations") },
+					{ term: t(isDay ? "origin.weightedBefore" : "origin.weightedY"), detail: inUnit(totals.y, units.y) },
+					...(quotient && units.x ? [{ term: t("origin.weightedX"), detail: inUnit(totals.x, units.x) }] : []),
 				]}
 			/>
 		</Section>

@@ -8,7 +8,7 @@ type Line = [part: string, of: string, item: string, value: string | number | nu
  * unrounded. An absent number is an empty field.
  */
 export function figureOriginCsv(told: ToldFigure): string {
-	const { survey, area, cropKey, measure, origin } = told;
+	const { survey, area, cropKey, measure, origin, units } = told;
 	const { estimate, items, totals } = origin;
 	return toCsv(
 		["part", "of", "item", "value"],
@@ -35,7 +35,9 @@ export function figureOriginCsv(told: ToldFigure): string {
 				missing: estimate ? estimate.missing : "no_respondents",
 				weighted_count: totals.count,
 				weighted_sum_y: totals.y,
+				unit_y: units.y,
 				weighted_sum_x: totals.x,
+				unit_x: units.x,
 			}),
 			...lines("answers", "", {
 				used: items.used,

@@ -2,6 +2,7 @@ import type { Access } from "#app/auth/guard.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { countDispositions } from "#app/collect/dispositions.server.ts";
+import { unitOfQuantity } from "#app/collect/quantity-unit.ts";
 import { frameResponse } from "#app/estimate/response-rate.ts";
 import { readWeighing } from "#app/jobs/weighed-estimates.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -29,6 +30,11 @@ export async function findFigureOrigin(trx: Trx, viewer: Associate, place: Figur
 		area: { key: area.key, kind: area.kind, name: area.name, stateFips: area.stateFips },
 		cropKey,
 		measure: { key, label, description, kind, unit, decimals, season: inputs.survey.season },
+		/** Of the sums above and below the line. */
+		units: {
+			y: unitOfQuantity(measure.numerator, inputs.definition),
+			x: measure.denominator && unitOfQuantity(measure.denominator, inputs.definition),
+		},
 		weighting: inputs.weighting,
 		frameStrata: inputs.frame.flatMap(({ cropKey: crop, stratumKey, stateFips, sizeClass }) =>
 			crop === cropKey ? [{ stratumKey, stateFips, sizeClass }] : [],

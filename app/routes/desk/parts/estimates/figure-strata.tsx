@@ -2,16 +2,19 @@ import { useTranslation } from "react-i18next";
 import { type Column, DataTable } from "#app/components/data-table.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
+import type { MeasureUnit } from "#app/lib/format.ts";
 import type { OriginStratum } from "./figure-origin.ts";
 import type { ToldFigure } from "./figure-origin.server.ts";
 
 /** The weights by stratum, and which strata were joined and why. */
-export function FigureStrata({ told: { origin, measure } }: { told: ToldFigure }) {
+export function FigureStrata({ told: { origin, measure, units } }: { told: ToldFigure }) {
 	const { t } = useTranslation("release");
 	const format = useFormat();
 	const named = useStratumName();
 	const quotient = measure.kind === "ratio" || measure.kind === "proportion";
 	const isDay = measure.kind === "day";
+	const inUnit = (sum: number, unit: MeasureUnit) =>
+		format.figure(sum, { ...measure, unit, decimals: unit === "operations" ? 0 : 1 });
 	return (
 		<Section title={t("origin.strata.title")}>
 			<DataTable
@@ -36,10 +39,10 @@ export function FigureStrata({ told: { origin, measure } }: { told: ToldFigure }
 							]
 						: []),
 					number("inArea", t("origin.strata.inArea"), (one) => format.number(one.inArea)),
-					number("sumY", t(isDay ? "origin.strata.before" : "origin.strata.sumY"), (one) =>
-						format.number(one.sumY, isDay ? 0 : 1),
-					),
-					...(quotient ? [number("sumX", t("origin.strata.sumX"), (one) => format.number(one.sumX, 1))] : []),
+					number("sumY", t(isDay ? "origin.strata.before" : "origin.strata.sumY"), (one) => inUnit(one.sumY, units.y)),
+					...(quotient && units.x
+						? [number("sumX", t("origin.strata.sumX"), (one) => inUnit(one.sumX, units.x!))]
+						: []),
 					number("share", t("origin.strata.share"), ({ varianceShare }) =>
 						varianceShare === null ? t("estimates.absent") : format.quantity(varianceShare * 100, "percent", 1),
 					),
