@@ -38,7 +38,7 @@ export async function listPaperForms(
 		matching
 			.where(beyond)
 			.select(["f.operation_id as operationId", "o.name", "o.contact_name as contactName", "c.name as countyName"])
-			.select(["s.name as stateName", "o.language", place.as("place")])
+			.select(["c.county_fips as countyFips", "o.language", place.as("place")])
 			.orderBy(inOrder)
 			.limit(limit)
 			.execute(),

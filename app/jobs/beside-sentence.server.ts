@@ -2,6 +2,7 @@ import type { TFunction } from "i18next";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import { findReleaseId, listToldCrops } from "#app/collect/own-facts.server.ts";
 import type { Mailing } from "#app/collect/survey-mailing.server.ts";
+import { countyName } from "#app/i18n/county-name.ts";
 import type { Language } from "#app/i18n/language.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import type { Formatter } from "#app/lib/format.ts";
@@ -32,11 +33,8 @@ export async function besideSentence(
 	const told = wanted.find((one) => typeof beside?.cells[comparisonKey(one)]?.lower === "number");
 	const cell = told && beside?.cells[comparisonKey(told)];
 	if (!told || !cell || cell.lower === null || cell.upper === null) return null;
-	const isCounty = cell.kind === "county" && cell.stateFips !== null;
 	return t([`mail:thank_you.beside_${measure.key}`, "mail:thank_you.beside"], {
-		area: isCounty
-			? t("public:area.county", { name: cell.areaName, state: t(`common:state.${cell.stateFips}`) })
-			: cell.areaName,
+		area: cell.kind === "county" ? countyName(t, { name: cell.areaName, countyFips: cell.areaKey }) : cell.areaName,
 		measure: wordsIn(measure.label, language),
 		crop: t([`public:crop_said.${told.cropKey}`, `common:crop.${told.cropKey}`]),
 		value: format.figure(cell.value, measure),

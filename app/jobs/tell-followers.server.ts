@@ -7,6 +7,7 @@ import {
 	type ReleaseChange,
 } from "#app/auth/change-mailings.server.ts";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
+import { countyName } from "#app/i18n/county-name.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { env } from "#app/lib/env.server.ts";
 import { lookWords } from "#app/lib/figure-words.ts";
@@ -107,11 +108,10 @@ async function listChanged(release: Release, language: "en" | "es"): Promise<Cha
 	]);
 	const format = formatterFor(language, t);
 	const measureOf = new Map([...earlier, ...measures].map((measure) => [measure.key, measure]));
-	const lines = changes.map(({ measureKey, cropKey, areaName, areaKind, stateFips, before, after }) => {
+	const lines = changes.map(({ measureKey, cropKey, areaKey, areaName, areaKind, before, after }) => {
 		const measure = measureOf.get(measureKey ?? "");
-		const state = stateFips ? t(`common:state.${stateFips}`) : "";
 		return t("dataroom:changeMail.line", {
-			area: areaKind === "county" && state ? t("public:area.county", { name: areaName, state }) : areaName,
+			area: areaKind === "county" ? countyName(t, { name: areaName, countyFips: areaKey }) : areaName,
 			crop: t(`common:crop.${cropKey}`),
 			measure: measure ? wordsIn(measure.label, language) : t("public:data.changes.wholeCell"),
 			before: lookWords(before, measure, t, format),

@@ -1,8 +1,10 @@
 import type { TFunction } from "i18next";
 import { useTranslation } from "react-i18next";
+import { countyName } from "#app/i18n/county-name.ts";
+import { countyKind } from "#app/lib/county-kind.ts";
 import { onceEach, sentencePattern } from "#app/lib/sentence-pattern.ts";
 
-type Area = { areaName: string; kind?: string; stateFips?: string | null };
+type Area = { areaKey: string; areaName: string; kind?: string };
 
 export function useAreaName() {
 	const { t } = useTranslation();
@@ -11,9 +13,11 @@ export function useAreaName() {
 
 /** An area's name where it stands alone: counties of one name lie in several states, so "Story County, Iowa". */
 export function areaNamer(t: TFunction) {
-	const countyOf = onceEach((stateFips: string) =>
-		sentencePattern(["name"], ({ name }) => t("public:area.county", { name, state: t(`common:state.${stateFips}`) })),
+	const nameLike = onceEach((_: string, countyFips: string) =>
+		sentencePattern(["name"], ({ name }) => countyName(t, { name, countyFips })),
 	);
-	return ({ areaName, kind, stateFips }: Area): string =>
-		kind === "county" && stateFips ? countyOf(stateFips)({ name: areaName }) : areaName;
+	return ({ areaKey, areaName, kind }: Area): string =>
+		kind === "county"
+			? nameLike(`${areaKey.slice(0, 2)} ${countyKind(areaKey)}`, areaKey)({ name: areaName })
+			: areaName;
 }

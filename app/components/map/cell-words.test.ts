@@ -14,7 +14,7 @@ const shown = { look: "number", steadiness: "care", respondentsBand: "5-9", clas
 const counties = Array.from({ length: 3000 }, (_, index) => ({
 	areaName: `$& ${index}`,
 	kind: "county",
-	stateFips: index % 2 ? "19" : "29",
+	areaKey: index % 2 ? "19001" : "29001",
 	cell: { ...shown, areaKey: `${index}`, value: index % 100, lower: index % 90, upper: index % 100 } as DrawnCell,
 }));
 
@@ -38,6 +38,20 @@ test("thousands of counties are told in sentences that are looked up once, not f
 	expect(new Set(said).size).toBe(3000);
 	expect(lookedUp).toBeLessThan(100);
 	expect((await saidIn("es")).said[1999]).toMatch(/Iowa.*99.*19.*99/);
+});
+
+test("what is no county is called what it is there, in both languages", async () => {
+	for (const [index, areaKey] of ["22071", "51770", "11001"].entries()) counties[index]!.areaKey = areaKey;
+	const [en, es] = [(await saidIn("en")).said, (await saidIn("es")).said];
+	expect([en[0], en[1], en[2]].map((said) => said?.split(":")[0])).toEqual([
+		"$& 0 Parish, Louisiana",
+		"$& 1 City, Virginia",
+		"$& 2",
+	]);
+	expect([es[0], es[1]].map((said) => said?.split(":")[0])).toEqual([
+		"Parroquia de $& 0, Luisiana",
+		"Ciudad de $& 1, Virginia",
+	]);
 });
 
 test("a figure without a likely range is told as such, in both languages", async () => {

@@ -15,6 +15,7 @@ import { Section } from "#app/components/section.tsx";
 import { DistrictsForm } from "#app/directory/districts.schema.ts";
 import { findStateDistricts, redrawDistricts, undoRedrawing } from "#app/directory/districts.server.ts";
 import { type DistrictNames, districtProblems, districtsOf, nameDistricts } from "#app/directory/districts.ts";
+import { countyName } from "#app/i18n/county-name.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { lookAgain } from "#app/lib/look-again.ts";
@@ -177,7 +178,10 @@ export default function Districts({ loaderData, actionData }: Route.ComponentPro
 				<ErrorSummary
 					problems={problems}
 					labels={Object.fromEntries(
-						counties.map(({ countyFips, name }) => [`district.${countyFips}`, t("table.boxLabel", { county: name })]),
+						counties.map(({ countyFips, name }) => [
+							`district.${countyFips}`,
+							t("table.boxLabel", { county: countyName(t, { name, countyFips }) }),
+						]),
 					)}
 				/>
 				<Form

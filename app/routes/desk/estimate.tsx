@@ -27,7 +27,7 @@ export default function Estimate({ loaderData, params }: Route.ComponentProps) {
 	const title = t("origin.title", {
 		measure: wordsIn(measure.label, i18n.language),
 		crop: t(`common:crop.${cropKey}`),
-		area: area.name ? nameArea({ ...area, areaName: area.name }) : t("estimates.ownStates"),
+		area: area.name ? nameArea({ areaKey: area.key, areaName: area.name, kind: area.kind }) : t("estimates.ownStates"),
 	});
 	return (
 		<>

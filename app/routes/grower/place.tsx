@@ -8,6 +8,7 @@ import { DescriptionList } from "#app/components/description-list.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Page } from "#app/components/page.tsx";
 import { type CountyChoice, findOwnPlace, moveOperation, removePin } from "#app/directory/own-place.server.ts";
+import { countyName } from "#app/i18n/county-name.ts";
 import { getT } from "#app/i18n/middleware.server.ts";
 import { countyOfPin } from "#app/lib/geography/county-of-pin.server.ts";
 import { parseForm, type Problem } from "#app/lib/parse-form.ts";
@@ -58,10 +59,9 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const move = { countyFips: found.countyFips, pin };
 	const outcome = await grower.transaction((trx) => moveOperation(trx, grower.viewer, params.operationId, move));
 	if (outcome === "not_found") throw refusal("orchard_not_found");
-	const state = getT(context, "common")(`state.${found.stateFips}`);
 	context.get(sessionContext).flash("toast", {
 		key: outcome === "moved" ? "orchard:place.toast.moved" : "orchard:place.toast.stayed",
-		values: { county: found.name, state },
+		values: { county: countyName(getT(context, "common"), found) },
 	});
 	return redirect(back, 303);
 }

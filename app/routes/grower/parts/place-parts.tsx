@@ -9,6 +9,7 @@ import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { useHydrated } from "#app/components/use-hydrated.ts";
 import type { CountyChoice } from "#app/directory/own-place.server.ts";
+import { countyName } from "#app/i18n/county-name.ts";
 import type { Pin } from "#app/lib/geography/pin.ts";
 import type { FormValues, Problem } from "#app/lib/parse-form.ts";
 import { readPin } from "./place-form.ts";
@@ -48,7 +49,7 @@ export function PinPart({ pin, counties, countiesAddress: address, values, probl
 	const told = (fips: string | null) => {
 		const county = counties.find(({ countyFips }) => countyFips === fips);
 		if (!county) return t("place.pinOutside");
-		return t("place.pinIn", { county: county.name, state: t(`common:state.${county.stateFips}`) });
+		return t("place.pinIn", { county: countyName(t, county) });
 	};
 	return (
 		<Section title={t("place.pinTitle")}>

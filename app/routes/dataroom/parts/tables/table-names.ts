@@ -24,7 +24,7 @@ export function useTableNames(catalogue: TableCatalogue) {
 			return t("tables.season", { season, number: code });
 		}
 		const area = areas.get(code);
-		return area ? areaName({ areaName: area.name, kind: area.kind, stateFips: area.stateFips }) : code;
+		return area ? areaName({ areaKey: code, areaName: area.name, kind: area.kind }) : code;
 	};
 	return {
 		nameOf,

@@ -31,7 +31,11 @@ export function FindingMoved({ moved }: { moved: FindingView["moved"] }) {
 				rowKey={({ area, measure }) => `${measure.key} ${area.key}`}
 				columns={[
 					{ key: "measure", header: t("moved.measure"), cell: ({ measure }) => wordsIn(measure.label, i18n.language) },
-					{ key: "area", header: t("queue.area"), cell: ({ area }) => nameArea({ ...area, areaName: area.name }) },
+					{
+						key: "area",
+						header: t("queue.area"),
+						cell: ({ area }) => nameArea({ areaKey: area.key, areaName: area.name, kind: area.kind }),
+					},
 					{ key: "from", header: t(`moved.from.${moved.from}`), numeric: true, cell: (row) => figure(row, 0) },
 					{
 						key: "to",

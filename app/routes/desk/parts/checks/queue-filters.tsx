@@ -35,7 +35,7 @@ export function QueueFilters({ query, crops, areas }: QueueFiltersProps) {
 						.filter((area) => area.kind === kind)
 						.map((area) => ({
 							value: area.key,
-							label: nameArea({ ...area, areaName: area.name }),
+							label: nameArea({ areaKey: area.key, areaName: area.name, kind: area.kind }),
 							group: t(`common:areaKind.${kind}`),
 						})),
 				),

@@ -1,6 +1,7 @@
 import { useTranslation } from "react-i18next";
 import { DataTable } from "#app/components/data-table.tsx";
 import { fieldId, FieldProblem, inputClasses } from "#app/components/field-frame.tsx";
+import { countyName } from "#app/i18n/county-name.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 
 export type CountyRow = { countyFips: string; name: string; now: string | null; typed: string };
@@ -36,7 +37,7 @@ function NameBox({ row, problems }: { row: CountyRow; problems?: Problem[] }) {
 	const { t } = useTranslation("districts");
 	const name = `district.${row.countyFips}`;
 	const problem = problems?.find(({ field }) => field === name);
-	const label = t("table.boxLabel", { county: row.name });
+	const label = t("table.boxLabel", { county: countyName(t, row) });
 	return (
 		<>
 			<label htmlFor={fieldId(name)} className="sr-only">

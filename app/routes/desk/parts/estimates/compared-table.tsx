@@ -38,7 +38,10 @@ export function ComparedTable({ query, measures, rows, isDrafted }: ComparedTabl
 					key: "area",
 					header: t("estimates.area"),
 					sortable: true,
-					cell: ({ area }) => (area.name ? nameArea({ ...area, areaName: area.name }) : t("estimates.ownStates")),
+					cell: ({ area }) =>
+						area.name
+							? nameArea({ areaKey: area.key, areaName: area.name, kind: area.kind })
+							: t("estimates.ownStates"),
 				},
 				{
 					key: "measure",

@@ -42,7 +42,10 @@ export function ReweightedTable({ query, measures, rows }: ReweightedTableProps)
 					key: "area",
 					header: t("estimates.area"),
 					sortable: true,
-					cell: ({ area }) => (area.name ? nameArea({ ...area, areaName: area.name }) : t("estimates.ownStates")),
+					cell: ({ area }) =>
+						area.name
+							? nameArea({ areaKey: area.key, areaName: area.name, kind: area.kind })
+							: t("estimates.ownStates"),
 				},
 				{
 					key: "measure",

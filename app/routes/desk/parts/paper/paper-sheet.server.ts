@@ -4,6 +4,7 @@ import { formNumberOf, type PaperQuery } from "#app/collect/paper-forms.schema.t
 import type { PaperForm, PaperForms } from "#app/collect/paper-forms.server.ts";
 import { listAllSteps, type Step } from "#app/collect/steps.ts";
 import { unitFamilyOf, unitsFor } from "#app/collect/units.ts";
+import { countyName } from "#app/i18n/county-name.ts";
 import { type Language, wordsIn } from "#app/i18n/language.ts";
 import { resources } from "#app/i18n/resources.ts";
 import { i18nextSettings } from "#app/i18n/settings.ts";
@@ -61,7 +62,7 @@ function paperSheet({ survey, definition }: PaperForms, form: PaperForm, languag
 		language,
 		title,
 		number: t("answered:paper.number", { number: formNumberOf(form.operationId) }),
-		lines: [form.name, form.contactName, t("answered:paper.place", { county: form.countyName, state: form.stateName })],
+		lines: [form.name, form.contactName, countyName(t, { name: form.countyName, countyFips: form.countyFips })],
 		returnBy: t("answered:paper.returnBy", {
 			day: format.dayOf(survey.closesAt, survey.timeZone),
 			phone: helpContact.phone,

@@ -21,7 +21,7 @@ export function ChangesTable({ changes, measures }: ChangesTableProps) {
 		{
 			key: "area",
 			header: t("data.changes.area"),
-			cell: ({ areaName: name, areaKind, stateFips }) => areaName({ areaName: name, kind: areaKind, stateFips }),
+			cell: ({ areaKey, areaName: name, areaKind }) => areaName({ areaKey, areaName: name, kind: areaKind }),
 		},
 		{ key: "crop", header: t("table.crop"), cell: ({ cropKey }) => t(`common:crop.${cropKey}`) },
 		{
