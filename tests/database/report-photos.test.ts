@@ -197,6 +197,22 @@ test("a photo taken away is gone from page, PDF and database, and its place says
 	expect(told).toMatchObject({ type: "photo_gone", takenAway: { because: "consent_withdrawn" } });
 	expect(JSON.stringify(told)).not.toContain("frozen blossom");
 
+	// What it showed is told in no kept version either, nor can anybody write it there again; all else stays as published.
+	const kept = await owner.query(
+		"select content::text from publish.report where report_id = $1 union all select content::text from publish.report_edit where report_id = $1",
+		[reportId],
+	);
+	expect(kept.rows.length).toBeGreaterThan(1);
+	expect(JSON.stringify(kept.rows)).not.toContain("frozen blossom");
+	expect(JSON.stringify(kept.rows)).toContain("Taken away");
+	for (const change of ["content = $2", "content = content, slug = 'other'"]) {
+		const again = JSON.stringify({ ...content, title: words("Other") });
+		const values = change.includes("$2") ? [reportId, again] : [reportId];
+		await expect(owner.query(`update publish.report set ${change} where report_id = $1`, values)).rejects.toThrow(
+			"frozen",
+		);
+	}
+
 	// A print that was under way may show it still, and is not kept; the next one is.
 	await desk((trx) => keepReportFile(trx, reportId, "es", printed, goneBefore));
 	expect(await findReportFile(reportId, "es")).toBeUndefined();
