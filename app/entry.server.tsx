@@ -7,10 +7,12 @@ import { type EntryContext, type HandleErrorFunction, type RouterContextProvider
 import { getInstance } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { log, withoutToken } from "#app/lib/log.server.ts";
+import { makeRequestsReadable } from "#app/lib/readable-request.server.ts";
 import { nonceContext } from "#app/lib/security-headers.server.ts";
 
 // Read at start, so that a server with a missing or unsafe setting stops at once and says which.
 env();
+makeRequestsReadable();
 
 export const streamTimeout = 10_000;
 
