@@ -98,7 +98,14 @@ const told = (measure: string, crop: string, area: string) => {
 describe("the files of a release", () => {
 	test("state the terms of use wherever a format has a place for it, and no licence that nobody named", async () => {
 		const identify = "Nobody uses them to work out a grower, a farm or a withheld figure.";
-		for (const name of ["csv-metadata.json", "datapackage.json", "codebook.json", "codebook.csv", "counties.geojson"]) {
+		for (const name of [
+			"csv-metadata.json",
+			"datapackage.json",
+			"sdmx-structure.json",
+			"codebook.json",
+			"codebook.csv",
+			"counties.geojson",
+		]) {
 			expect(text(name), name).toContain(identify);
 			expect(text(name), name).toContain("cita la publicación por su número");
 			expect(text(name), name).not.toMatch(/"(dc:)?licen[sc]e[s"]*: *["{[]/);

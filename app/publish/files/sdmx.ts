@@ -60,7 +60,7 @@ const listOf: Record<string, string> = {
 
 /** The data structure with its concepts and code lists, as an SDMX-JSON 2.0 structure message. */
 export function sdmxStructure(source: FileSource): unknown {
-	const { structureId, title, publishedAt } = source;
+	const { structureId, title, publishedAt, terms, license } = source;
 	const maintained = { agencyID: agency, version };
 	return {
 		meta: {
@@ -94,6 +94,10 @@ export function sdmxStructure(source: FileSource): unknown {
 					id: structureId,
 					name: title.en,
 					names: title,
+					annotations: [
+						{ id: "TERMS_OF_USE", type: "TERMS_OF_USE", text: terms.en, texts: terms },
+						...(license ? [{ id: "LICENSE", type: "LICENSE", text: license, texts: { en: license } }] : []),
+					],
 					dataStructureComponents: components(dimensionsOf(source)),
 				},
 			],
