@@ -15,22 +15,24 @@ export function ChangesTable({ changes, measures }: ChangesTableProps) {
 	const format = useFormat();
 	const areaName = useAreaName();
 	const measureOf = new Map(measures.map((measure) => [measure.key, measure]));
+	const measureName = (measureKey: string | null) => {
+		const measure = measureOf.get(measureKey ?? "");
+		return measure ? wordsIn(measure.label, i18n.language) : t("data.changes.wholeCell");
+	};
 	const told = (change: CellChange, when: "before" | "after") =>
 		lookWords(change[when], measureOf.get(change.measureKey ?? ""), t, format);
 	const columns: Column<CellChange>[] = [
 		{
 			key: "area",
 			header: t("data.changes.area"),
-			cell: ({ areaKey, areaName: name, areaKind }) => areaName({ areaKey, areaName: name, kind: areaKind }),
-		},
-		{ key: "crop", header: t("table.crop"), cell: ({ cropKey }) => t(`common:crop.${cropKey}`) },
-		{
-			key: "measure",
-			header: t("map.form.measure"),
-			cell: ({ measureKey }) => {
-				const measure = measureOf.get(measureKey ?? "");
-				return measure ? wordsIn(measure.label, i18n.language) : t("data.changes.wholeCell");
-			},
+			// What it is of in one column, so that both figures have room beside it on a phone.
+			cell: ({ areaKey, areaName: name, areaKind, cropKey, measureKey }) => (
+				<>
+					{areaName({ areaKey, areaName: name, kind: areaKind })}
+					<span className="block font-normal text-quiet">{t(`common:crop.${cropKey}`)}</span>
+					<span className="block font-normal text-quiet">{measureName(measureKey)}</span>
+				</>
+			),
 		},
 		{ key: "before", header: t("data.changes.before"), numeric: true, cell: (change) => told(change, "before") },
 		{ key: "after", header: t("data.changes.after"), numeric: true, cell: (change) => told(change, "after") },
