@@ -258,6 +258,18 @@ export interface CollectFormVersion {
   version: number;
 }
 
+export interface CollectFrameCount {
+  bearing_trees: number;
+  county_fips: string;
+  crop_key: string;
+  disposition: string;
+  operations: number;
+  size_class: string;
+  state_fips: string;
+  stratum_key: string;
+  survey_id: string;
+}
+
 export interface CollectFrameCrop {
   bearing_trees: number;
   crop_key: string;
@@ -857,6 +869,7 @@ export interface DB {
   "collect.form": CollectForm;
   "collect.form_draft": CollectFormDraft;
   "collect.form_version": CollectFormVersion;
+  "collect.frame_count": CollectFrameCount;
   "collect.frame_crop": CollectFrameCrop;
   "collect.frame_operation": CollectFrameOperation;
   "collect.late_decision": CollectLateDecision;

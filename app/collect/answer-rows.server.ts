@@ -2,6 +2,7 @@ import { isDeepStrictEqual } from "node:util";
 import { type Selectable, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { DB } from "#db/schema.ts";
+import { groupBy } from "#app/lib/group-by.ts";
 import type { Answer, Confirmation } from "./form.ts";
 import { listPhotoAnswers } from "./photo-rows.server.ts";
 import { answersByPlace, placeOf, type PlantingAsked } from "./steps.ts";
@@ -125,6 +126,16 @@ export async function listPlantingsAsked(
 	answers: Answer[],
 ): Promise<PlantingAsked[]> {
 	const answered = new Set(answers.map(({ plantingId }) => plantingId));
+	return (await listPlantingsOf(trx, surveyId, [operationId], answered)).get(operationId) ?? [];
+}
+
+/** The same of several operations at once. @param answered plantings that were answered about. */
+export async function listPlantingsOf(
+	trx: Trx,
+	surveyId: string,
+	operationIds: string[],
+	answered: ReadonlySet<string | null> = new Set(),
+): Promise<Map<string, PlantingAsked[]>> {
 	const rows = await trx
 		.selectFrom("directory.planting as p")
 		.innerJoin("directory.crop as c", "c.crop_key", "p.crop_key")
@@ -136,28 +147,42 @@ export async function listPlantingsAsked(
 			join.onRef("o.survey_id", "=", "f.survey_id").onRef("o.operation_id", "=", "f.operation_id"),
 		)
 		.innerJoin("directory.state as z", "z.state_fips", "o.state_fips")
-		.where("p.operation_id", "=", operationId)
+		.where((eb) => eb("p.operation_id", "=", eb.fn.any(eb.val(operationIds))))
 		.where("f.survey_id", "=", surveyId)
 		.orderBy("c.position")
 		.orderBy("p.cultivar")
 		.orderBy("p.planting_id")
 		.select(["p.planting_id", "p.crop_key", "p.cultivar", "p.bearing_trees", "c.plant_kind", "c.bushel_lb"])
+		.select("p.operation_id")
 		.select(
 			// Pulled out on the day of the opening, it stood that morning.
 			sql<boolean>`p.removed_on is null or (p.created_at <= s.opened_at
 				and p.removed_on >= (s.opened_at at time zone z.time_zone)::date)`.as("stood"),
 		)
 		.execute();
-	return rows
-		.filter((row) => row.stood || answered.has(row.planting_id))
-		.map((row) => ({
-			plantingId: row.planting_id,
-			cropKey: row.crop_key,
-			cultivar: row.cultivar,
-			bearingTrees: row.bearing_trees,
-			plantKind: row.plant_kind === "bush" ? "bush" : "tree",
-			bushelLb: row.bushel_lb,
-		}));
+	const asked = rows.filter((row) => row.stood || answered.has(row.planting_id));
+	const ofEach = groupBy(asked, (row) => row.operation_id);
+	return new Map([...ofEach].map(([operationId, plantings]) => [operationId, plantings.map(toPlantingAsked)]));
+}
+
+type PlantingRow = {
+	planting_id: string;
+	crop_key: string;
+	cultivar: string;
+	bearing_trees: number;
+	plant_kind: string;
+	bushel_lb: number | null;
+};
+
+function toPlantingAsked(row: PlantingRow): PlantingAsked {
+	return {
+		plantingId: row.planting_id,
+		cropKey: row.crop_key,
+		cultivar: row.cultivar,
+		bearingTrees: row.bearing_trees,
+		plantKind: row.plant_kind === "bush" ? "bush" : "tree",
+		bushelLb: row.bushel_lb,
+	};
 }
 
 /** What the operation's crates held when it last told, by crop: what is known is not asked again. */

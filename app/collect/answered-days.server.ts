@@ -1,7 +1,6 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { treesByOperation } from "./frame-trees.server.ts";
 
 /** Operations that sent in for the first time within a day, counted from the opening: 0 is its first 24 hours. */
 export type AnsweredDay = { day: number; operations: number; bearingTrees: number };
@@ -15,19 +14,21 @@ export async function listAnsweredDays(
 ): Promise<AnsweredDay[]> {
 	const day = sql<number>`floor(extract(epoch from r.first_submitted_at - s.opened_at) / 86400)::int`;
 	return trx
-		.with("trees", treesByOperation(surveyId, cropKey))
 		.selectFrom("collect.response as r")
-		.innerJoin("trees as t", "t.operation_id", "r.operation_id")
+		.innerJoin("collect.frame_crop as c", (join) =>
+			join.onRef("c.survey_id", "=", "r.survey_id").onRef("c.operation_id", "=", "r.operation_id"),
+		)
 		.innerJoin("collect.survey as s", "s.survey_id", "r.survey_id")
 		.where("r.survey_id", "=", surveyId)
 		.where("r.state_fips", "in", viewer.stateFips)
 		.where("r.submitted_at", "is not", null)
+		.$if(cropKey !== "all", (rows) => rows.where("c.crop_key", "=", cropKey))
 		.groupBy(day)
 		.orderBy(day)
 		.select([
 			day.as("day"),
-			sql<number>`count(*)::int`.as("operations"),
-			sql<number>`sum(t.bearing_trees)::float8`.as("bearingTrees"),
+			sql<number>`count(distinct r.operation_id)::int`.as("operations"),
+			sql<number>`sum(c.bearing_trees)::float8`.as("bearingTrees"),
 		])
 		.execute();
 }

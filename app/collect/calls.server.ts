@@ -1,11 +1,10 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { type Order, pageByKey, type PagePart } from "#app/lib/page-by-key.server.ts";
+import { countRows, type Order, pageByKey, type PagePart } from "#app/lib/page-by-key.server.ts";
 import type { Place } from "#app/lib/page-by-key.ts";
 import type { CallQuery, ContactOutcome } from "./contacts.schema.ts";
 import type { Disposition } from "./frame-list.server.ts";
-import { treesByOperation } from "./frame-trees.server.ts";
 import { isWaitedFor } from "./waited-for.server.ts";
 
 const pageSize = 50;
@@ -13,20 +12,20 @@ const pageSize = 50;
 /** Operations and answers of one county's part of a stratum, in the viewer's states; who does not belong is not counted. */
 export async function listCallCells(trx: Trx, viewer: Associate, surveyId: string) {
 	return trx
-		.with("trees", treesByOperation(surveyId, "all"))
-		.selectFrom("collect.frame_operation as f")
-		.leftJoin("trees as t", "t.operation_id", "f.operation_id")
-		.where("f.survey_id", "=", surveyId)
-		.where("f.state_fips", "in", viewer.stateFips)
-		.where("f.disposition", "!=", "not_eligible")
-		.groupBy(["f.county_fips", "f.stratum_key"])
-		.orderBy("f.county_fips")
-		.orderBy("f.stratum_key")
-		.select(["f.county_fips as countyFips", "f.stratum_key as stratumKey"])
+		.selectFrom("collect.frame_count")
+		.where("survey_id", "=", surveyId)
+		.where("crop_key", "=", "all")
+		.where("state_fips", "in", viewer.stateFips)
+		.where("disposition", "!=", "not_eligible")
+		.groupBy(["county_fips", "stratum_key"])
+		.having(sql`sum(operations)`, ">", 0)
+		.orderBy("county_fips")
+		.orderBy("stratum_key")
+		.select(["county_fips as countyFips", "stratum_key as stratumKey"])
 		.select([
-			sql<number>`count(*)::int`.as("frameSize"),
-			sql<number>`count(*) filter (where f.disposition = 'complete')::int`.as("answered"),
-			sql<number>`coalesce(sum(t.bearing_trees), 0)::float8`.as("bearingTrees"),
+			sql<number>`sum(operations)::int`.as("frameSize"),
+			sql<number>`coalesce(sum(operations) filter (where disposition = 'complete'), 0)::int`.as("answered"),
+			sql<number>`sum(bearing_trees)::float8`.as("bearingTrees"),
 		])
 		.execute();
 }
@@ -102,8 +101,7 @@ export async function listCalls(
 	cells: readonly WorthCell[],
 ) {
 	const frame = sql`${waitedFor(viewer, surveyId)} and ${matching(query)}`;
-	const counted = await sql<{ total: number }>`select count(*)::int as total from ${frame}`.execute(trx);
-	const total = counted.rows[0]!.total;
+	const count = await countRows(trx, (most) => sql`(select from ${frame} limit ${most})`);
 	const read = async ({ beyond, inOrder, place, limit }: PagePart) => {
 		const { rows } = await sql<CallRow & { place: Place }>`
 		with waited as materialized (select f.operation_id, f.county_fips, f.stratum_key, f.disposition, o.name, o.contact_name,
@@ -124,7 +122,7 @@ export async function listCalls(
 		where ${beyond} order by ${inOrder} limit ${limit}`.execute(trx);
 		return rows;
 	};
-	return { ...(await pageByKey(byWorth, query, pageSize, read)), total };
+	return { ...(await pageByKey(byWorth, query, pageSize, read)), ...count };
 }
 
 /** Promised ones by their time, those of no certain time at the end of their day. */

@@ -3,9 +3,13 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { SizeClass } from "./frame.ts";
 import type { Disposition } from "./frame-list.server.ts";
-import { treesByOperation } from "./frame-trees.server.ts";
 
 export type DispositionCount = { disposition: Disposition; operations: number; bearingTrees: number };
+
+const counts = [
+	sql<number>`sum(operations)::int`.as("operations"),
+	sql<number>`sum(bearing_trees)::float8`.as("bearingTrees"),
+] as const;
 
 /**
  * What became of a survey's operations with a crop, in counties of the viewer's states: how many, and the bearing trees that
@@ -19,21 +23,15 @@ export async function countDispositions(
 ): Promise<DispositionCount[]> {
 	if (countyFips.length === 0) return [];
 	const rows = await trx
-		.selectFrom("collect.frame_operation as f")
-		.innerJoin("collect.frame_crop as c", (join) =>
-			join.onRef("c.survey_id", "=", "f.survey_id").onRef("c.operation_id", "=", "f.operation_id"),
-		)
-		.where("f.survey_id", "=", surveyId)
-		.where("f.state_fips", "in", viewer.stateFips)
-		.where("f.county_fips", "in", countyFips)
-		.$if(cropKey !== "all", (query) => query.where("c.crop_key", "=", cropKey))
-		.groupBy("f.disposition")
-		.orderBy("f.disposition")
-		.select([
-			"f.disposition",
-			sql<number>`count(distinct f.operation_id)::int`.as("operations"),
-			sql<number>`sum(c.bearing_trees)::float8`.as("bearingTrees"),
-		])
+		.selectFrom("collect.frame_count")
+		.where("survey_id", "=", surveyId)
+		.where("crop_key", "=", cropKey)
+		.where("state_fips", "in", viewer.stateFips)
+		.where("county_fips", "in", countyFips)
+		.where("operations", ">", 0)
+		.groupBy("disposition")
+		.orderBy("disposition")
+		.select(["disposition", ...counts])
 		.execute();
 	return rows.map((row) => ({ ...row, disposition: row.disposition as Disposition }));
 }
@@ -58,13 +56,13 @@ export async function listOutcomes(
 	cropKey: string,
 ): Promise<OutcomeRow[]> {
 	return trx
-		.with("trees", treesByOperation(surveyId, cropKey))
-		.selectFrom("collect.frame_operation as f")
-		.innerJoin("trees as t", "t.operation_id", "f.operation_id")
+		.selectFrom("collect.frame_count as f")
 		.innerJoin("directory.county as c", "c.county_fips", "f.county_fips")
 		.leftJoin("directory.district as d", "d.district_key", "c.district_key")
 		.where("f.survey_id", "=", surveyId)
+		.where("f.crop_key", "=", cropKey)
 		.where("f.state_fips", "in", viewer.stateFips)
+		.where("f.operations", ">", 0)
 		.groupBy(["f.state_fips", "c.district_key", "d.name", "f.size_class", "f.disposition"])
 		.orderBy("f.state_fips")
 		.orderBy("d.name")
@@ -74,8 +72,7 @@ export async function listOutcomes(
 		.select([
 			sql<SizeClass>`f.size_class`.as("sizeClass"),
 			sql<Disposition>`f.disposition`.as("disposition"),
-			sql<number>`count(*)::int`.as("operations"),
-			sql<number>`sum(t.bearing_trees)::float8`.as("bearingTrees"),
+			...counts,
 		])
 		.execute();
 }

@@ -1,7 +1,7 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
+import { type Counted, countRows, type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
 import type { FrameQuery } from "./desk-lists.schema.ts";
 import { listMails, type Mail } from "./mail-list.server.ts";
 
@@ -47,7 +47,7 @@ function selectFrame(trx: Trx, viewer: Associate, surveyId: string) {
 /** A page of a survey's growers, those of equal sort values by id. */
 export async function listFrame(trx: Trx, viewer: Associate, surveyId: string, query: FrameQuery) {
 	const matching = matchingFrame(trx, viewer, surveyId, query);
-	const { total } = await matching.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
+	const count = await countFrame(trx, viewer, surveyId, query);
 	const size = query.all ? largestPage : pageSize;
 	const page = await pageByKey(orderOf(query), query, size, ({ beyond, inOrder, place, limit }) =>
 		matching.where(beyond).select(frameColumns).select(place.as("place")).orderBy(inOrder).limit(limit).execute(),
@@ -58,7 +58,22 @@ export async function listFrame(trx: Trx, viewer: Associate, surveyId: string, q
 		surveyId,
 		page.rows.map((row) => row.operationId),
 	);
-	return { ...page, rows: page.rows.map((row) => toRow(row, mails.get(row.operationId))), total };
+	return { ...page, rows: page.rows.map((row) => toRow(row, mails.get(row.operationId))), ...count };
+}
+
+/** A frame whole is told exactly, since that is kept; part of a large one as far as it is counted. */
+async function countFrame(trx: Trx, viewer: Associate, surveyId: string, query: FrameQuery): Promise<Counted> {
+	const matching = matchingFrame(trx, viewer, surveyId, query);
+	const count = await countRows(trx, (most) => matching.select(sql.lit(1).as("one")).limit(most));
+	if (!count.moreThanTotal || query.q !== "" || query.show !== "all") return count;
+	const kept = await trx
+		.selectFrom("collect.frame_count")
+		.where("survey_id", "=", surveyId)
+		.where("crop_key", "=", "all")
+		.where("state_fips", "in", viewer.stateFips)
+		.select(sql<number>`sum(operations)::int`.as("total"))
+		.executeTakeFirstOrThrow();
+	return { total: kept.total, moreThanTotal: false };
 }
 
 const frameColumns = [

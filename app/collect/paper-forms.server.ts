@@ -1,8 +1,8 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
-import { listPlantingsAsked } from "./answer-rows.server.ts";
+import { countRows, type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
+import { listPlantingsOf } from "./answer-rows.server.ts";
 import { findSurveyForm } from "./forms.server.ts";
 import type { PaperQuery } from "./paper-forms.schema.ts";
 import { findSurvey, isId } from "./surveys.server.ts";
@@ -32,8 +32,8 @@ export async function listPaperForms(
 		.$if(operationId === undefined && query.show === "no_address", (rows) =>
 			rows.where(sql<boolean>`coalesce(o.email, '') = ''`),
 		);
-	const { total } = await matching.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
-	if (operationId !== undefined && total === 0) return undefined;
+	const count = await countRows(trx, (most) => matching.select(sql.lit(1).as("one")).limit(most));
+	if (operationId !== undefined && count.total === 0) return undefined;
 	const page = await pageByKey(byPlace, query, pageSize, ({ beyond, inOrder, place, limit }) =>
 		matching
 			.where(beyond)
@@ -43,12 +43,17 @@ export async function listPaperForms(
 			.limit(limit)
 			.execute(),
 	);
-	const forms = [];
-	for (const row of page.rows) {
-		const plantings = await listPlantingsAsked(trx, { surveyId, operationId: row.operationId }, []);
-		forms.push({ ...row, language: row.language === "es" ? ("es" as const) : ("en" as const), plantings });
-	}
-	return { survey, definition, forms, total, before: page.before, after: page.after };
+	const plantings = await listPlantingsOf(
+		trx,
+		surveyId,
+		page.rows.map((row) => row.operationId),
+	);
+	const forms = page.rows.map((row) => ({
+		...row,
+		language: row.language === "es" ? ("es" as const) : ("en" as const),
+		plantings: plantings.get(row.operationId) ?? [],
+	}));
+	return { survey, definition, forms, ...count, before: page.before, after: page.after };
 }
 export type PaperForms = NonNullable<Awaited<ReturnType<typeof listPaperForms>>>;
 export type PaperForm = PaperForms["forms"][number];

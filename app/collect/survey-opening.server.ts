@@ -150,6 +150,8 @@ export async function freezeFrame(trx: Trx, { surveyId, stateFips, cropKeys, reh
 	}));
 	for (const part of inParts(frame)) await trx.insertInto("collect.frame_operation").values(part).execute();
 	for (const part of inParts(crops)) await trx.insertInto("collect.frame_crop").values(part).execute();
+	// The page of a large frame is opened next, and the planner would take it for as small as it was.
+	if (frame.length > 1_000) await sql`select collect.know_frames()`.execute(trx);
 	return frame.length;
 }
 

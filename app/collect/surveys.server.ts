@@ -76,9 +76,10 @@ function selectSurveys(trx: Trx, viewer: Associate) {
 				where g.survey_id = s.survey_id)`.as("time_zone"),
 			sql<boolean>`s.opened_at is not null and s.closed_at is null and s.closes_at > now()`.as("is_open"),
 			eb
-				.selectFrom("collect.frame_operation as f")
-				.select(sql<number>`count(*)`.as("n"))
+				.selectFrom("collect.frame_count as f")
+				.select(sql<number>`sum(f.operations)::int`.as("n"))
 				.whereRef("f.survey_id", "=", "s.survey_id")
+				.where("f.crop_key", "=", "all")
 				.where("f.state_fips", "in", viewer.stateFips)
 				.as("in_frame"),
 			eb

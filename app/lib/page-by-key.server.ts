@@ -1,6 +1,21 @@
-import { type RawBuilder, sql } from "kysely";
+import { type Expression, type QueryExecutorProvider, type RawBuilder, sql } from "kysely";
 import { z } from "zod";
 import { type Beside, type PageByKey, type Place, placeText } from "./page-by-key.ts";
+
+/** Beyond this a list that must be gone through to be counted is told as "more than". */
+const countedTo = 1_000;
+/** `moreThanTotal` where the list is longer than `total`, which is as far as it was counted. */
+export type Counted = { total: number; moreThanTotal: boolean };
+
+/** How long a list is, as far as it is counted. @param rows the list's rows, at most so many. */
+export async function countRows(
+	db: QueryExecutorProvider,
+	rows: (most: number) => Expression<unknown>,
+): Promise<Counted> {
+	const counted = await sql<{ rows: number }>`select count(*)::int as rows from ${rows(countedTo + 1)} c`.execute(db);
+	const [{ rows: found }] = counted.rows as [{ rows: number }];
+	return { total: Math.min(found, countedTo), moreThanTotal: found > countedTo };
+}
 
 type Column = RawBuilder<unknown>;
 type KeyKind = { given: z.ZodType<Place[number]>; told: (by: Column) => Column; read: (value: unknown) => Column };

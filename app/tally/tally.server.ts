@@ -9,12 +9,20 @@ import type { CropRespondents, DayCount, FrameStratum, KeptTally } from "#app/ta
  * not given are counted and are in none of the sums; a cell with nothing else is still listed, with n = 0. A trigger
  * tallies the facts of a county and stratum anew whenever one of them comes, changes or goes, in the same transaction,
  * so that no rounding is left behind by what went.
+ * @param only those of one measure or crop.
  * @returns rows ordered by measure, crop, county and stratum, so that two runs give the same list.
  */
-export async function listTallies(trx: Transaction<DB>, surveyId: string): Promise<KeptTally[]> {
+export async function listTallies(
+	trx: Transaction<DB>,
+	surveyId: string,
+	only: { measureKey?: string; cropKey?: string } = {},
+): Promise<KeptTally[]> {
+	const { measureKey, cropKey } = only;
 	return trx
 		.selectFrom("collect.tally")
 		.where("survey_id", "=", surveyId)
+		.$if(measureKey !== undefined, (rows) => rows.where("measure_key", "=", measureKey!))
+		.$if(cropKey !== undefined, (rows) => rows.where("crop_key", "=", cropKey!))
 		.orderBy("measure_key")
 		.orderBy("crop_key")
 		.orderBy("county_fips")
@@ -67,14 +75,12 @@ export async function listFrameStrata(
 	trx: Transaction<DB>,
 	surveyId: string,
 ): Promise<(FrameStratum & { cropKey: string })[]> {
-	const stratum = sql`o.state_fips, o.size_class, o.stratum_key`;
 	const { rows } = await sql<FrameStratum & { cropKey: string }>`
-		select coalesce(c.crop_key, 'all') as "cropKey", o.stratum_key as "stratumKey", o.state_fips as "stateFips",
-			array_position(array['small', 'medium', 'large'], o.size_class) as "sizeClass",
-			count(distinct c.operation_id)::int as "frameSize"
-		from collect.frame_crop c join collect.frame_operation o using (survey_id, operation_id)
-		where c.survey_id = ${surveyId} and o.disposition <> 'not_eligible'
-		group by grouping sets ((c.crop_key, ${stratum}), (${stratum}))
+		select crop_key as "cropKey", stratum_key as "stratumKey", state_fips as "stateFips",
+			array_position(array['small', 'medium', 'large'], size_class) as "sizeClass", sum(operations)::int as "frameSize"
+		from collect.frame_count
+		where survey_id = ${surveyId} and disposition <> 'not_eligible'
+		group by crop_key, state_fips, size_class, stratum_key having sum(operations) > 0
 		order by 1, 2`.execute(trx);
 	return rows;
 }

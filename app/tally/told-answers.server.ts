@@ -10,13 +10,12 @@ export async function listFrameCells(
 	trx: Transaction<DB>,
 	surveyId: string,
 ): Promise<(FrameCell & { cropKey: string })[]> {
-	const place = sql`o.county_fips, o.stratum_key`;
 	const { rows } = await sql<FrameCell & { cropKey: string }>`
-		select coalesce(c.crop_key, 'all') as "cropKey", o.county_fips as "countyFips", o.stratum_key as "stratumKey",
-			count(distinct c.operation_id)::int as operations, sum(c.bearing_trees)::float8 as "bearingTrees"
-		from collect.frame_crop c join collect.frame_operation o using (survey_id, operation_id)
-		where c.survey_id = ${surveyId} and o.disposition <> 'not_eligible'
-		group by grouping sets ((c.crop_key, ${place}), (${place}))
+		select crop_key as "cropKey", county_fips as "countyFips", stratum_key as "stratumKey",
+			sum(operations)::int as operations, sum(bearing_trees)::float8 as "bearingTrees"
+		from collect.frame_count
+		where survey_id = ${surveyId} and disposition <> 'not_eligible'
+		group by crop_key, county_fips, stratum_key having sum(operations) > 0
 		order by 1, 2, 3`.execute(trx);
 	return rows;
 }

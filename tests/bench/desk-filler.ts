@@ -27,8 +27,8 @@ export async function fillDesk(owner: Client, size: number): Promise<FilledDesk>
 	const [last, surveyId] = (
 		await owner.query<{ survey_id: string }>(surveys, [JSON.stringify(afterHarvest), personId])
 	).rows.map(({ survey_id }) => survey_id) as [string, string];
-	for (const table of ["frame_operation", "fact"])
-		await owner.query(`alter table collect.${table} disable trigger user`);
+	const kept = ["frame_operation", "frame_crop", "fact"];
+	for (const table of kept) await owner.query(`alter table collect.${table} disable trigger user`);
 	for (const survey of [last, surveyId]) {
 		await owner.query("insert into collect.survey_state select $1::uuid, unnest($2::text[])", [survey, states]);
 		await owner.query(frame, [survey]);
@@ -37,9 +37,9 @@ export async function fillDesk(owner: Client, size: number): Promise<FilledDesk>
 		await owner.query(submissions, [survey]);
 		await owner.query(facts, [survey, afterHarvest.measures.map(({ key }) => key)]);
 	}
-	for (const table of ["frame_operation", "fact"])
-		await owner.query(`alter table collect.${table} enable trigger user`);
-	for (const survey of [last, surveyId]) await owner.query("select collect.retally_survey($1)", [survey]);
+	for (const table of kept) await owner.query(`alter table collect.${table} enable trigger user`);
+	for (const survey of [last, surveyId])
+		await owner.query("select collect.recount_frame($1), collect.retally_survey($1)", [survey]);
 	for (const query of [findings, contacts, mailings]) await owner.query(query, [surveyId, personId]);
 	await owner.query(events, [personId, size * 2]);
 	await owner.query(

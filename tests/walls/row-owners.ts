@@ -11,6 +11,8 @@ export type Holder = {
 	import_id: string;
 	/** Of a measure that nobody else has facts of, so that its tally is this operation's alone. */
 	measure_key: string;
+	/** Of a stratum that nobody else is in. */
+	stratum_key: string;
 };
 type Row = Omit<Holder, "import_id">;
 export type Holders = { iowa: Holder; neighbor: Holder; wisconsin: Holder };
@@ -86,7 +88,7 @@ async function addHolder(owner: Client, { surveyId, draftId, personId }: Shared,
 	]);
 	await owner.query(
 		`insert into collect.frame_operation (survey_id, operation_id, owner_id, county_fips, state_fips, size_class, stratum_key)
-		select $1, operation_id, owner_id, county_fips, state_fips, 'small', state_fips || ':small'
+		select $1, operation_id, owner_id, county_fips, state_fips, 'small', operation_id::text
 		from directory.operation where operation_id = $2`,
 		[surveyId, operationId],
 	);
@@ -148,6 +150,7 @@ async function addHolder(owner: Client, { surveyId, draftId, personId }: Shared,
 		edit_finding_id: await addFinding(owner, responseId, mailingId, personId),
 		release_draft_id: draftId,
 		measure_key: measureKey,
+		stratum_key: operationId,
 	};
 }
 

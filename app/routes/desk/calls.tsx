@@ -115,7 +115,7 @@ export default function Calls({ loaderData, actionData, params }: Route.Componen
 					{t("paper.all")}
 				</Link>
 			</p>
-			<KeyPaging before={calls.before} after={calls.after} total={calls.total} />
+			<KeyPaging before={calls.before} after={calls.after} total={calls.total} moreThanTotal={calls.moreThanTotal} />
 		</>
 	);
 }

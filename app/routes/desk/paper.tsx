@@ -20,13 +20,13 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const query = PaperQuery.parse(Object.fromEntries(new URL(request.url).searchParams));
 	const papers = await desk.transaction((trx) => listPaperForms(trx, desk.viewer, params, query));
 	if (!papers) throw refusal(params.operationId ? "operation_not_found" : "survey_not_found");
-	const { survey, total, before, after } = papers;
+	const { survey, total, moreThanTotal, before, after } = papers;
 	return {
 		query,
 		title: survey.title,
 		season: survey.season,
 		states: survey.stateFips.filter((one) => desk.viewer.stateFips.includes(one)),
-		paging: { total, before, after },
+		paging: { total, moreThanTotal, before, after },
 		sheets: await paperSheets(papers, query),
 	};
 }

@@ -61,7 +61,7 @@ export default function Responses({ loaderData, params }: Route.ComponentProps) 
 				timeZone={timeZone}
 				empty={state === "draft" ? "draft" : query.show === "all" && !query.q ? "nobody" : "noMatch"}
 			/>
-			<KeyPaging before={frame.before} after={frame.after} total={frame.total} />
+			<KeyPaging before={frame.before} after={frame.after} total={frame.total} moreThanTotal={frame.moreThanTotal} />
 			{frame.rows.length > 0 && <PrintPart all={query.all || (frame.before === null && frame.after === null)} />}
 		</>
 	);
