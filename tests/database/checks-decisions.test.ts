@@ -213,6 +213,8 @@ describe("two at once", () => {
 		const { surveyId, findingOf } = await oddSurvey(owner, iowa);
 		const press = () => decide(iowa, surveyId, findingOf("harvested"), corrected(3000));
 		expect(await Promise.all([press(), press()])).toEqual(["done", "done"]);
+		// From a second window of the same person comes another value: it is not kept, and that is told.
+		expect(await decide(iowa, surveyId, findingOf("harvested"), corrected(3500))).toBe("changed");
 		const corrections = "collect.correction join collect.response using (response_id) where survey_id = $1";
 		expect(await count(owner, corrections, [surveyId])).toBe(1);
 	});

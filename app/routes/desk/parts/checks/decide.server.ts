@@ -42,7 +42,7 @@ export async function decideFinding(
 ): Promise<Decided> {
 	const finding = await holdFinding(trx, viewer, { surveyId, findingId });
 	if (!finding) return "not_found";
-	if (finding.version !== closing.version) return isSame(finding, viewer, closing) ? "done" : "changed";
+	if (finding.version !== closing.version) return (await isSame(trx, finding, viewer, closing)) ? "done" : "changed";
 	if (closing.act === "reopen") return reopen(trx, viewer, finding, surveyId);
 	if (finding.outcome !== null) return "changed";
 	if (closing.act === "confirm") {
@@ -65,10 +65,21 @@ async function holdFinding(trx: Trx, viewer: Associate, { surveyId, findingId }:
 	return findFinding(trx, viewer, surveyId, findingId);
 }
 
-function isSame(finding: Finding, viewer: Associate, closing: Closing): boolean {
+/** The same press once more. Another value from a second window of the same person is not that: it was not kept. */
+async function isSame(trx: Trx, finding: Finding, viewer: Associate, closing: Closing): Promise<boolean> {
 	if (finding.version !== closing.version + 1) return false;
 	if (closing.act === "reopen") return finding.outcome === null;
-	return finding.closedById === viewer.personId && finding.outcome === outcomes[closing.act];
+	if (finding.closedById !== viewer.personId || finding.outcome !== outcomes[closing.act]) return false;
+	if (closing.act === "confirm") return true;
+	const place = finding.about[closing.at];
+	const newest = place && (await findNewest(trx, finding.responseId, place));
+	if (!newest || newest.editFindingId !== finding.findingId) return false;
+	const { answer } = newest;
+	return closing.act === "set_aside" || (answer !== null && "kind" in answer && sameSaid(closing.answer, answer));
+}
+
+async function findNewest(trx: Trx, responseId: string, place: Parameters<typeof keyOf>[0]) {
+	return (await listCorrections(trx, responseId)).find((one) => keyOf(one) === keyOf(place));
 }
 
 async function putCorrection(
@@ -80,7 +91,7 @@ async function putCorrection(
 	const { responseId, findingId } = finding;
 	const place = finding.about[closing.at];
 	if (!place) return "not_found";
-	const newest = (await listCorrections(trx, responseId)).find((one) => keyOf(one) === keyOf(place));
+	const newest = await findNewest(trx, responseId, place);
 	const submission = await findNewestSubmission(trx, responseId, "counted");
 	const own = submission?.answers.find((one) => keyOf(one) === keyOf(place));
 	if (!own || (newest?.number ?? 0) !== closing.seen || !sameSaid(standingAnswer(own, newest), place)) return "changed";
