@@ -94,20 +94,15 @@ export async function listToldInWords(
 	return pageByKey(byPlace, beside, pageSize, read);
 }
 
-/** How many words have no code yet, and how many have one or were left as they are. */
+/** How many words have no code yet, how many have one or were left as they are, and those that have one with it, each once. */
 export async function countToldInWords(trx: Trx, viewer: Associate, surveyId: string, questionKeys: string[]) {
-	const { rows } = await sql<{ open: number; done: number }>`with ${toldIn(viewer, surveyId, questionKeys)}
-		select (count(*) filter (where not is_coded))::int as open, (count(*) filter (where is_coded))::int as done
+	type Told = { open: number; done: number; coded: { words: string; codes: string[] }[] };
+	const { rows } = await sql<Told>`with ${toldIn(viewer, surveyId, questionKeys)}
+		select (count(*) filter (where not is_coded))::int as open, (count(*) filter (where is_coded))::int as done,
+			coalesce(jsonb_agg(distinct jsonb_build_object('words', told ->> 'value', 'codes', answer -> 'codes'))
+				filter (where is_coded and answer -> 'codes' <> '[]'), '[]') as coded
 		from decided`.execute(trx);
 	return rows[0]!;
-}
-
-/** Words that were given a code, with it, each once. */
-export async function listCodedWords(trx: Trx, viewer: Associate, surveyId: string, questionKeys: string[]) {
-	const { rows } = await sql<{ words: string; codes: string[] }>`with ${toldIn(viewer, surveyId, questionKeys)}
-		select distinct told ->> 'value' as words, answer -> 'codes' as codes from decided
-		where is_coded and answer -> 'codes' <> '[]'`.execute(trx);
-	return rows;
 }
 
 /** One grower's words. */

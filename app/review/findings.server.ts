@@ -2,7 +2,7 @@ import { type RawBuilder, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { Answer } from "#app/collect/form.ts";
-import { type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
+import { countRows, type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
 import type { FindingsQuery } from "./findings.schema.ts";
 import type { CheckKind, Odd } from "./odd-answers.ts";
 import type { FindingEnd, FindingStep, Moved } from "./save-findings.server.ts";
@@ -14,14 +14,11 @@ export type Finding = Awaited<ReturnType<typeof findFinding>> & {};
 /** A page of the queue, findings of equal sort values by id. */
 export async function listFindings(trx: Trx, viewer: Associate, surveyId: string, query: FindingsQuery) {
 	const matching = narrow(selectFindings(trx, viewer, surveyId), query);
-	const { total } = await matching
-		.clearSelect()
-		.select((eb) => eb.fn.countAll<number>().as("total"))
-		.executeTakeFirstOrThrow();
+	const count = await countRows(trx, (most) => matching.clearSelect().select(sql.lit(1).as("one")).limit(most));
 	const page = await pageByKey(orderOf(query), query, pageSize, ({ beyond, inOrder, place, limit }) =>
 		matching.where(beyond).select(place.as("place")).orderBy(inOrder).limit(limit).execute(),
 	);
-	return { ...page, total };
+	return { ...page, ...count };
 }
 
 /** @returns undefined outside the viewer's states, for another survey's finding, and where the answers were taken back. */

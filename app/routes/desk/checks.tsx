@@ -65,7 +65,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 
 /** What is odd about the answers of a survey, and what became of it. */
 export default function Checks({ loaderData, actionData, params }: Route.ComponentProps) {
-	const { query, rows, open, before, after, total, undoable } = loaderData;
+	const { query, rows, open, before, after, total, moreThanTotal, undoable } = loaderData;
 	const { t } = useTranslation("checks");
 	const format = useFormat();
 	return (
@@ -94,7 +94,7 @@ export default function Checks({ loaderData, actionData, params }: Route.Compone
 					</div>
 				)}
 			</Form>
-			{total > 0 && <KeyPaging before={before} after={after} total={total} />}
+			{total > 0 && <KeyPaging before={before} after={after} total={total} moreThanTotal={moreThanTotal} />}
 			{!loaderData.isDraft && (
 				<Form method="post" className="no-print mt-8">
 					<Button kind="quiet" name="act" value="check_again">

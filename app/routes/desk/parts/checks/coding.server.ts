@@ -6,7 +6,7 @@ import { findSurveyForm } from "#app/collect/forms.server.ts";
 import { findSurvey, isId } from "#app/collect/surveys.server.ts";
 import { besideParts } from "#app/lib/page-by-key.ts";
 import { codedQuestionsOf, codesOf, suggestCodes } from "#app/review/coding.ts";
-import { countToldInWords, listCodedWords, listToldInWords, listWordsOfResponse } from "#app/review/coding.server.ts";
+import { countToldInWords, listToldInWords, listWordsOfResponse } from "#app/review/coding.server.ts";
 import { addCorrection, lockForDecision } from "#app/review/decisions.server.ts";
 import { takeIn } from "./decide.server.ts";
 
@@ -34,9 +34,8 @@ export async function readCoding(trx: Trx, viewer: Associate, surveyId: string, 
 	const asked = await readQuestions(trx, viewer, surveyId);
 	if (!asked) return undefined;
 	const { questions, questionKeys, definition } = asked;
-	const { open, done } = await countToldInWords(trx, viewer, surveyId, questionKeys);
+	const { open, done, coded } = await countToldInWords(trx, viewer, surveyId, questionKeys);
 	const page = await listToldInWords(trx, viewer, surveyId, { ...query, questionKeys });
-	const coded = query.show === "open" ? await listCodedWords(trx, viewer, surveyId, questionKeys) : [];
 	const rows = page.rows.map((one) => {
 		const question = questions.find(({ key }) => key === one.questionKey)!;
 		const choices = codesOf(definition, question, one.cropKey);
