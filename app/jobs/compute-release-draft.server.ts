@@ -4,6 +4,7 @@ import { log } from "#app/lib/log.server.ts";
 import { protect, type Protection, type ProtectionTable, type ProtectOptions } from "#app/protect/protect.ts";
 import { protectInThread } from "#app/protect/protect-thread.server.ts";
 import { guardRevision } from "#app/protect/revision.ts";
+import { sharedCells } from "#app/protect/shared-cells.ts";
 import { surveyTable } from "#app/protect/survey-table.ts";
 import { draftChecksum, publishedChecksum } from "#app/release/checksums.server.ts";
 import { type DraftCell, ReleaseAudit, type ReleaseMethod } from "#app/release/draft.ts";
@@ -48,6 +49,7 @@ export async function computeReleaseDraft(
 			label: inputs.quantityLabels.get(one.quantity),
 		})),
 		seconds,
+		heldAgainst: inputs.heldAgainst,
 		gap: protection.loss && gapOf(protection.loss),
 	});
 	await transact({ kind: "network" }, async (trx) => {
@@ -78,14 +80,17 @@ async function protectWatched(
 	}
 }
 
-/** What the releases before tell, which this one is held against. */
-function whatIsPublic(table: ProtectionTable, { rules, method, earlier, holdings }: DraftInputs): ProtectOptions {
-	if (earlier.length === 0) return {};
+/** What the releases before tell, and those of other surveys of the season, which this one is held against. */
+function whatIsPublic(table: ProtectionTable, inputs: DraftInputs): ProtectOptions {
+	const { rules, method, earlier, others, holdings } = inputs;
 	const areas = treeOf(method.areas);
 	const quantities = table.quantities.map(({ key }) => key);
 	return {
-		guard: guardRevision({ areas, quantities, rules, earlier, holdings }),
-		revision: { areas, cropKeys: method.cropKeys, earlier, holdings },
+		...(earlier.length > 0 && {
+			guard: guardRevision({ areas, quantities, rules, earlier, holdings }),
+			revision: { areas, cropKeys: method.cropKeys, earlier, holdings },
+		}),
+		...(others.length > 0 && { shared: sharedCells({ areas, rules, holdings, others }) }),
 	};
 }
 

@@ -19,7 +19,14 @@ export type Decided =
 	| { done: "scheduled" | "unscheduled" | "rejected" }
 	| {
 			refused:
-				"not_found" | "not_waiting" | "not_yet" | "own_draft" | "changed" | "not_scheduled" | "already_withdrawn";
+				| "not_found"
+				| "not_waiting"
+				| "not_yet"
+				| "own_draft"
+				| "changed"
+				| "outdated"
+				| "not_scheduled"
+				| "already_withdrawn";
 	  }
 	| { problem: Problem };
 

@@ -25,18 +25,29 @@ export async function keepBasis(trx: Trx, releaseDraftId: string, holdings: read
 
 /**
  * Every release of a survey so far, withdrawn ones too: whoever saw its figures may have kept them.
- * @returns in the order of editions, each with the cells that it showed and the answers that it was made of.
- * @throws {Error} for a release of whose answers nothing was kept: no revision can be held against it.
+ * @returns in the order of editions.
+ * @throws {Error} as `listEditions` does.
  */
 export async function listEarlierEditions(trx: Trx, surveyId: string): Promise<Edition[]> {
 	const releases = await trx
 		.selectFrom("release.release")
-		.select(["release_id", "number"])
+		.select(["release_id as releaseId", "number"])
 		.where("series_id", "=", surveyId)
 		.orderBy("edition")
 		.execute();
+	return listEditions(trx, releases);
+}
+
+/**
+ * What these releases showed and the answers that each was made of, in their order.
+ * @throws {Error} for a release of whose answers nothing was kept: no draft can be held against it.
+ */
+export async function listEditions(
+	trx: Trx,
+	releases: readonly { releaseId: string; number: number }[],
+): Promise<Edition[]> {
 	if (releases.length === 0) return [];
-	const ids = releases.map(({ release_id }) => release_id);
+	const ids = releases.map(({ releaseId }) => releaseId);
 	const cells = await trx
 		.selectFrom("release.cell")
 		.select(["release_id", "area_key", "crop_key"])
@@ -53,12 +64,12 @@ export async function listEarlierEditions(trx: Trx, surveyId: string): Promise<E
 		.execute();
 	const shownBy = groupBy(cells, (cell) => cell.release_id);
 	const heldBy = groupBy(rows, (row) => row.release_draft_id);
-	return releases.map(({ release_id, number }) => {
-		const held = heldBy.get(release_id);
+	return releases.map(({ releaseId, number }) => {
+		const held = heldBy.get(releaseId);
 		if (!held) throw new Error(`nothing was kept of the answers behind release ${number}`);
 		return {
 			name: String(number),
-			shown: new Set((shownBy.get(release_id) ?? []).map(({ area_key, crop_key }) => cellKey(area_key, crop_key))),
+			shown: new Set((shownBy.get(releaseId) ?? []).map(({ area_key, crop_key }) => cellKey(area_key, crop_key))),
 			holdings: held.map((row) => ({
 				owner: row.owner_id,
 				areaKey: row.county_fips,

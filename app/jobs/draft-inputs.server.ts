@@ -14,9 +14,11 @@ import { listOwnerShares } from "#app/protect/owner-shares.server.ts";
 import type { OwnerShares } from "#app/protect/owner-shares.ts";
 import { cellKey } from "#app/protect/protect.ts";
 import type { Edition } from "#app/protect/revision.ts";
+import type { OtherSurvey } from "#app/protect/shared-cells.ts";
 import { type ReleaseMethod, ReleaseRules } from "#app/release/draft.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
 import { listEarlierEditions } from "./draft-basis.server.ts";
+import { listOtherSurveys } from "./draft-other-surveys.server.ts";
 import { estimateByWeights } from "./weighed-estimates.server.ts";
 import { type SensitiveMeasures, sensitiveMeasures } from "./sensitive-measures.ts";
 
@@ -33,6 +35,10 @@ export type DraftInputs = {
 	holdings: Holding[];
 	/** Releases of the survey so far; a first one has none. */
 	earlier: Edition[];
+	/** Releases of other surveys of the season that asked some of the same. */
+	others: OtherSurvey[];
+	/** Every release of another survey of the season, whether it asked the same or not. */
+	heldAgainst: string[];
 };
 
 /** What a draft that waits to be computed is made of, or undefined when it no longer waits. */
@@ -110,6 +116,7 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 		}),
 		holdings: await listHoldings(trx, surveyId, { baseKeys, countedKeys: sensitive.counted }),
 		earlier: await listEarlierEditions(trx, surveyId),
+		...(await listOtherSurveys(trx, surveyId, definition)),
 	};
 }
 

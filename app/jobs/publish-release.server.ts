@@ -41,6 +41,7 @@ export async function publishAtItsMinute({ releaseDraftId }: { releaseDraftId: s
 		return publishApproved(trx, releaseDraftId, draft?.decided_by ?? null);
 	});
 	log.info({ releaseDraftId, ...outcome }, "scheduled release");
-	// The queue's clock is ahead of this one, or the draft was changed by hand: tried again, and seen on the health page.
-	if (outcome.outcome === "not_yet" || outcome.outcome === "changed") throw new Error(outcome.outcome);
+	// The queue's clock is ahead of this one, the draft was changed by hand, or another survey of the season was published
+	// since: tried again, and seen on the health page.
+	if (["not_yet", "changed", "outdated"].includes(outcome.outcome)) throw new Error(outcome.outcome);
 }

@@ -6,7 +6,6 @@ import { ownCells } from "./levels.ts";
 import { tableOfHoldings } from "./holdings-table.ts";
 import { protect } from "./protect.ts";
 import { defaultRules } from "./rules.ts";
-import { sharedCells } from "./shared-cells.ts";
 import { loadSolver } from "./solver.ts";
 
 const solver = await loadSolver();
@@ -80,8 +79,12 @@ describe("an audit fails", () => {
 		const c2 = table.cells.flatMap(({ coordinates: [area] }, index) => (area === "c2" ? [index] : []));
 		const told = { cells: new Map([["lb", new Set(c2)]]) };
 		expect(kinds(audit(grown, ["c2"], { told }))).toEqual(["solved"]);
-		const shownElsewhere = new Map([["lb", new Set(["c2|apple", "c2|all"])]]);
-		const { pattern, audit: passed } = await protect(table, rules, { shownElsewhere });
+		const shared = {
+			told: new Map([["lb", new Set(["c2|apple", "c2|all"])]]),
+
+			keptBack: new Map(),
+		};
+		const { pattern, audit: passed } = await protect(table, rules, { shared });
 		expect(passed.failures).toEqual([]);
 		expect([pattern.get("c2|apple")!.status, pattern.get("c3|apple")!.status]).toEqual(["shown", "withheld"]);
 	});
@@ -109,36 +112,11 @@ describe("shields", () => {
 		const grown = holdingsOf({ c1: [500], c2: many(90), c3: many(90), c4: many(70) });
 		const known = ["c2", "c3", "c4", REGION].flatMap((area) => [`${area}|apple`, `${area}|all`]);
 		const { pattern, audit: failed } = await protect(tableOf(grown), rules, {
-			shownElsewhere: new Map([["lb", new Set(known)]]),
+			guard: { told: new Set(known), keptBack: new Map() },
 		});
 		expect(failed.passed).toBe(false);
 		expect(failed.failures.length).toBeGreaterThan(0);
 		expect(failed.failures.every(({ beyondHelp, cellKey }) => beyondHelp && cellKey.startsWith("c1|"))).toBe(true);
 		expect(known.map((key) => pattern.get(key)!.status)).toEqual(known.map(() => "shown"));
-	});
-});
-
-describe("cells of other surveys", () => {
-	const here = holdingsOf({ c1: many(90), c2: many(50) });
-	const shared = (holdings: Holding[], shown: string[]) =>
-		sharedCells({
-			areas,
-			quantities: ["lb"],
-			rules,
-			holdings: here,
-			others: [{ name: "7", shown: new Set(shown), holdings }],
-		});
-	const changed = (count: number) => here.map((one, at) => (at < count ? { ...one, amounts: { lb: 7 } } : one));
-
-	test("are told where the same owners gave the same amounts, or all but two", () => {
-		expect(shared(here, ["c1|apple"]).get("lb")).toEqual(new Set(["c1|apple"]));
-		expect(shared(changed(2), ["c1|apple"]).get("lb")).toEqual(new Set(["c1|apple"]));
-	});
-
-	test("are not told where more owners differ, where they are withheld, or of another quantity", () => {
-		expect(shared(changed(3), ["c1|apple"]).size).toBe(0);
-		expect(shared(here, []).size).toBe(0);
-		const acres = here.map((one) => ({ ...one, amounts: { acres: 4 } }));
-		expect(shared(acres, ["c1|apple"]).size).toBe(0);
 	});
 });

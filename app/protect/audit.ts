@@ -45,6 +45,8 @@ export interface AuditResult extends Widths {
 	attackers: { kind: AttackerKind; tried: number; failed: number }[];
 	failures: AuditFailure[];
 	linearPrograms: number;
+	/** Cells of which other surveys of the season tell the value, or leave less room than is asked. */
+	knownElsewhere?: number;
 	/** Owners who find a cell too closely, to be named to the chooser and to nobody else. */
 	objectors: string[];
 }
@@ -220,14 +222,18 @@ function knownParts(
 	};
 }
 
-/** Each withheld cell's interval in one quantity, by cell key: what an attacker who knows all that is shown can say. */
+/**
+ * Each withheld cell's interval in one quantity, by cell key: what an attacker who knows all that is shown can say. What is
+ * told has none.
+ */
 export function feasibleIntervals(
 	solver: Solver,
 	table: ProtectionTable,
 	quantity: Quantity,
 	withheld: ReadonlySet<number>,
+	told?: Told,
 ): Map<string, Interval> {
-	const { cells, unknowns, relations } = systemOf(table, quantity, { withheld, told: undefined, sums: [] });
+	const { cells, unknowns, relations } = systemOf(table, quantity, { withheld, told, sums: [] });
 	const found = blocksOf(unknowns, relations).flatMap((block) => [...intervalsOf(solver, block).intervals]);
 	return new Map(found.map(([unknown, interval]) => [table.cells[cells[unknown]!]!.key, interval]));
 }

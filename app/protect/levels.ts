@@ -24,24 +24,29 @@ export interface OwnCell {
  *   group that has any, upwards only. Where the whole table has none the zero is plain to see, and no level is asked.
  * @param keptBack cells that `guardRevision` keeps back, with the room that it asks for: the wider one counts, and for a cell
  *   without another reason this alone.
+ * @param besideOthers likewise cells that `sharedCells` keeps back.
  */
 export function ownCells(
 	table: ProtectionTable,
 	rules: ProtectionRules,
 	keptBack: RevisionGuard["keptBack"] = new Map(),
+	besideOthers: RevisionGuard["keptBack"] = new Map(),
 ): OwnCell[] {
 	const wholes = wholesOf(table);
 	return table.cells.flatMap((cell, index) => {
 		const kept = cell.owners > 0 ? keptBack.get(cell.key) : undefined;
+		const shared = cell.owners > 0 ? besideOthers.get(cell.key) : undefined;
 		const own = ownReasons(cell, rules);
-		const reasons: OwnReason[] = kept ? [...own, "revision"] : own;
+		const reasons: OwnReason[] = [...own];
+		if (kept) reasons.push("revision");
+		if (shared) reasons.push("other_survey");
 		if (reasons.length === 0) return [];
 		const few = own.includes("too_few_owners");
 		const levels = Object.fromEntries(
 			table.quantities.map((q) => {
 				// What was a shield before has no room of its own to keep.
 				const needed = own.length > 0 ? level(table, wholes, index, q, few, rules) : 0;
-				const asked = Math.max(needed, kept?.[q.key] ?? 0);
+				const asked = Math.max(needed, kept?.[q.key] ?? 0, shared?.[q.key] ?? 0);
 				return [q.key, q.counted && asked > 0 ? Math.max(1, asked) : asked] as const;
 			}),
 		);

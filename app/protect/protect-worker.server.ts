@@ -15,7 +15,7 @@ const { table, rules, options } = workerData as ThreadStart;
 const solver = await loadSolver();
 
 try {
-	const plan = planProtection(table, rules, options);
+	const plan = planProtection(solver, table, rules, options);
 	port.on("message", (order: ThreadOrder) => {
 		if (order.kind === "block") {
 			const { block } = order;

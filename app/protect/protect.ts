@@ -3,10 +3,12 @@ import { type BlockChoice, chooseBlock, type ChoiceOptions, joinChoices, type Pl
 import { auditRevision, type RevisionInput, withRevision } from "./audit-revision.ts";
 import type { Holding } from "./holdings.ts";
 import { harden } from "./harden.ts";
+import { cutLevels } from "./cut-levels.ts";
 import { ownCells } from "./levels.ts";
 import type { RevisionGuard } from "./revision.ts";
 import { checkRules, type CellStatus, type OwnReason, type ProtectionRules } from "./rules.ts";
 import { type Objective, sumOver } from "./loss.ts";
+import type { CellsByQuantity, SharedCells } from "./shared-cells.ts";
 import { chooseShields } from "./shields.ts";
 import { loadSolver, type Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
@@ -59,15 +61,17 @@ export interface ProtectOptions extends Partial<Omit<ChoiceOptions, "told">> {
 	guard?: Pick<RevisionGuard, "keptBack" | "told">;
 	/** These releases, and the answers behind the draft: what it would show is then audited beside them. */
 	revision?: Pick<RevisionInput, "areas" | "cropKeys" | "earlier"> & { holdings: readonly Holding[] };
-	/**
-	 * By quantity, keys of cells whose value other surveys' releases show: see `sharedCells`. What these leave of a cell's
-	 * room may be less than its level, and then no choice passes.
-	 */
-	shownElsewhere?: ReadonlyMap<string, ReadonlySet<string>>;
+	/** What releases of other surveys of the season tell and withhold. */
+	shared?: SharedCells;
 }
 
 /** What is to be decided, with the rules that its audit goes by. */
-export type ProtectionPlan = Plan & { rules: ProtectionRules; revision: ProtectOptions["revision"] };
+export type ProtectionPlan = Plan & {
+	rules: ProtectionRules;
+	revision: ProtectOptions["revision"];
+	/** Own cells that other surveys tell, whole or in part. */
+	knownElsewhere: number;
+};
 
 /**
  * Decides for every cell of one survey whether it is shown, and audits the decision.
@@ -83,21 +87,28 @@ export async function protect(
 	options: ProtectOptions = {},
 ): Promise<Protection> {
 	const solver = await loadSolver();
-	const plan = planProtection(table, rules, options);
+	const plan = planProtection(solver, table, rules, options);
 	const choices = plan.blocks.map((block) => chooseBlock(solver, plan, block));
 	return concludeProtection(solver, plan, choices);
 }
 
 /** The first step: own cells, and the table taken apart into blocks, each to be chosen with `chooseBlock`. */
 export function planProtection(
+	solver: Solver,
 	table: ProtectionTable,
 	rules: ProtectionRules,
 	options: ProtectOptions,
 ): ProtectionPlan {
-	const { guard, shownElsewhere, revision, ...shielding } = options;
-	const told = whatIsTold(table, rules, guard?.told, shownElsewhere);
-	const own = ownCells(table, checkRules(rules), guard?.keptBack);
-	return { ...planChoice(table, own, { ...STRICT, ...shielding, told }, rules), rules, revision };
+	const { guard, shared, revision, ...shielding } = options;
+	const choosing = { ...STRICT, ...shielding };
+	const asked = ownCells(table, checkRules(rules), guard?.keptBack, shared?.keptBack);
+	const before = whatIsTold(table, rules, guard?.told);
+	if (!shared)
+		return { ...planChoice(table, asked, { ...choosing, told: before }, rules), rules, revision, knownElsewhere: 0 };
+	const told = whatIsTold(table, rules, guard?.told, shared.told);
+	const { ownersAttack } = choosing;
+	const { own, knownElsewhere } = cutLevels(solver, { table, rules, own: asked, told, before, ownersAttack });
+	return { ...planChoice(table, own, { ...choosing, told }, rules), rules, revision, knownElsewhere };
 }
 
 /** The last step: one pattern from the choices of all blocks, audited. */
@@ -134,7 +145,8 @@ export function concludeProtection(
 	// No pattern loses less than that of the own cells alone.
 	const bound = choice?.bound ?? (shields.size === 0 ? lost : null);
 	const loss = bound === null ? null : { objective: options.objective, lost, bound };
-	return { pattern, audit: beside(solver, plan, audit, pattern), loss };
+	const { knownElsewhere } = plan;
+	return { pattern, audit: { ...beside(solver, plan, audit, pattern), knownElsewhere }, loss };
 }
 
 /** The audit, with what the draft tells beside earlier releases. */
@@ -151,7 +163,7 @@ function whatIsTold(
 	table: ProtectionTable,
 	rules: ProtectionRules,
 	earlier: ReadonlySet<string> = new Set(),
-	elsewhere: ProtectOptions["shownElsewhere"] = new Map(),
+	elsewhere: CellsByQuantity = new Map(),
 ): Told {
 	const cells = table.quantities.map(({ key }) => {
 		const told = (cell: { key: string }) => earlier.has(cell.key) || elsewhere.get(key)?.has(cell.key);

@@ -5,9 +5,10 @@ export type CellStatus = "shown" | "withheld" | "no_growers";
 
 /**
  * Why a cell is withheld for its own sake. Only the desk sees it. `uniform`: everybody gave one answer to a sensitive
- * question; `revision`: showing it beside an earlier release would tell of too few.
+ * question; `revision`: showing it beside an earlier release would tell of too few; `other_survey`: a release of another
+ * survey of the season withholds the very same.
  */
-export type OwnReason = "too_few_owners" | "dominated" | "uniform" | "revision";
+export type OwnReason = "too_few_owners" | "dominated" | "uniform" | "revision" | "other_survey";
 
 /** The network's settings; frozen with each release. */
 export interface ProtectionRules {

@@ -1,38 +1,118 @@
+import { REGION } from "./codes.ts";
 import { type AreaTree, cellsAround, type Holding } from "./holdings.ts";
 import { changesByCell, type Edition } from "./revision.ts";
 import type { ProtectionRules } from "./rules.ts";
+import { cellKey } from "./table.ts";
+
+/** A release of another survey of the season, and the quantities that both surveys ask: same key, same unit. */
+export interface OtherSurvey extends Edition {
+	quantities: readonly string[];
+}
+
+/** By quantity, keys of cells. */
+export type CellsByQuantity = ReadonlyMap<string, ReadonlySet<string>>;
+
+/** What releases of other surveys of the season mean for the cells of this one. */
+export interface SharedCells {
+	/** The very value is shown there: it is known here, whatever is withheld. */
+	told: CellsByQuantity;
+	/** The very value is withheld there, so that it may not be shown here; with the room that it keeps, by quantity. */
+	keptBack: ReadonlyMap<string, Readonly<Record<string, number>>>;
+}
+
+/** Sums of doubles differ in their last digits. */
+const SAME = 1e-6;
 
 /**
- * Cells of a base quantity that another survey's release of the season tells: it shows the cell, and of the owners behind
- * both hardly any gave another amount there (fewer than k), as when two surveys ask the same growers for their bearing
- * trees. Such a value counts as known here, whether this release withholds the cell or not.
- * Covered are quantities of the same key and unit, over the same areas and crops, that both surveys' tables have. Not covered:
- * quantities that can only be compared (a normal crop beside a harvest), and cells in which more owners differ.
+ * Which cells two surveys of a season share, as when a watch of the bloom and a survey after harvest both ask the same
+ * growers for their bearing trees. A cell's value is one and the same in both where each owner's amount in it is, and that
+ * takes the same respondents: who answered one survey alone differs by all that is theirs. Then
+ * - shown there: known here (`told`), by both ends of a bound. Nothing of it is left to protect, and it shields nothing;
+ * - withheld there: kept back here with p% of its largest owner as room, or this release would tell what that one hides.
+ * Where anybody differs nothing is carried over: who answered which survey is told nowhere, and the bands of respondents
+ * bound no amount.
+ *
+ * Compared by area and crop: a county of states that are not asked here is a part of the network's cells there.
+ * Not the same quantity, and so never carried over: counts of answers, of which each survey has its own; amounts that can
+ * only be compared (a normal crop beside a harvest); the trees of the frame, which no release tells.
+ * Not covered: what few owners who differ can reckon from both figures, each knowing the own difference; and what follows
+ * from sums of cells that both withhold, such as a line of which this release shows one part and the other one the rest.
+ * For that both releases would have to be one program, as a survey's revisions are (`auditRevision`).
  * @param others with holdings as they were when their release was drafted.
- * @returns by quantity key, keys of cells; for `protect`'s `shownElsewhere`.
  */
 export function sharedCells(input: {
 	areas: AreaTree;
-	quantities: readonly string[];
 	rules: ProtectionRules;
 	holdings: readonly Holding[];
-	others: readonly Edition[];
-}): Map<string, Set<string>> {
-	const areas = new Set(input.areas.map(({ areaKey }) => areaKey));
-	const around = cellsAround(input.areas);
-	const living = new Set(input.holdings.flatMap(({ areaKey, cropKey }) => around(areaKey, cropKey)));
-	const told = input.quantities.map((quantity): [string, Set<string>] => {
-		const here = amountsOf(input.holdings, quantity);
-		const cells = input.others.flatMap(({ shown, holdings }) => {
-			const there = amountsOf(holdings, quantity).filter(({ areaKey }) => areas.has(areaKey));
-			if (there.length === 0) return [];
-			const changed = changesByCell(there, here, [quantity], around);
-			const same = (key: string) => (changed.get(key)?.size ?? 0) < input.rules.minimumOwners;
-			return [...living].filter((key) => shown.has(key) && same(key));
-		});
-		return [quantity, new Set(cells)];
-	});
-	return new Map(told.filter(([, cells]) => cells.size > 0));
+	others: readonly OtherSurvey[];
+}): SharedCells {
+	const { areas, holdings, others } = input;
+	const around = aroundWithin(areas);
+	const living = new Set(holdings.flatMap(({ areaKey, cropKey }) => around(areaKey, cropKey)));
+	const told = new Map<string, Set<string>>();
+	const hidden = new Map<string, Set<string>>();
+	for (const other of others) {
+		for (const quantity of other.quantities) {
+			const there = amountsOf(other.holdings, quantity);
+			if (there.length === 0) continue;
+			const answered = new Set(there.flatMap(({ areaKey, cropKey }) => around(areaKey, cropKey)));
+			const changed = changesByCell(there, amountsOf(holdings, quantity), [quantity], around);
+			for (const key of living) {
+				if (!answered.has(key)) continue;
+				const differs = [...(changed.get(key)?.values() ?? [])].some(([by]) => Math.abs(by!) > SAME);
+				if (!differs) note(other.shown.has(key) ? told : hidden, quantity, key);
+			}
+		}
+	}
+	return { told, keptBack: roomsOf(hidden, told, input, around) };
+}
+
+/** As `cellsAround`; counties outside the survey's areas are in the network's cells alone. */
+function aroundWithin(areas: AreaTree): (areaKey: string, cropKey: string) => string[] {
+	const inside = new Set(areas.map(({ areaKey }) => areaKey));
+	const around = cellsAround([...areas]);
+	const network = cellsAround([]);
+	return (areaKey, cropKey) => (inside.has(areaKey) ? around(areaKey, cropKey) : network(REGION, cropKey));
+}
+
+/** What one release tells is known, whatever another withheld. */
+function roomsOf(
+	hidden: CellsByQuantity,
+	told: CellsByQuantity,
+	{ rules, holdings }: { rules: ProtectionRules; holdings: readonly Holding[] },
+	around: (areaKey: string, cropKey: string) => string[],
+): Map<string, Record<string, number>> {
+	const rooms = new Map<string, Record<string, number>>();
+	for (const [quantity, keys] of hidden) {
+		const largest = largestOwners(amountsOf(holdings, quantity), quantity, around);
+		for (const key of keys) {
+			if (told.get(quantity)?.has(key)) continue;
+			const room = (rules.dominancePercent / 100) * (largest.get(key) ?? 0);
+			rooms.set(key, { ...rooms.get(key), [quantity]: room });
+		}
+	}
+	return rooms;
+}
+
+function largestOwners(
+	holdings: readonly Holding[],
+	quantity: string,
+	around: (areaKey: string, cropKey: string) => string[],
+): Map<string, number> {
+	const sums = new Map<string, number>();
+	const largest = new Map<string, number>();
+	for (const { owner, areaKey, cropKey, amounts } of holdings) {
+		for (const key of around(areaKey, cropKey)) {
+			const sum = (sums.get(cellKey(key, owner)) ?? 0) + amounts[quantity]!;
+			sums.set(cellKey(key, owner), sum);
+			largest.set(key, Math.max(largest.get(key) ?? 0, sum));
+		}
+	}
+	return largest;
+}
+
+function note(cells: Map<string, Set<string>>, quantity: string, key: string) {
+	cells.set(quantity, (cells.get(quantity) ?? new Set()).add(key));
 }
 
 /** One quantity alone: what else two surveys ask differs anyway. */

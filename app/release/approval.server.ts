@@ -5,12 +5,14 @@ import { isAsAudited } from "./checksums.server.ts";
 import { ReleaseAudit, ReleaseMethod } from "./draft.ts";
 import { listDraftCells } from "./drafts.server.ts";
 import { lockDraft } from "./publish.server.ts";
+import { isUpToDate } from "./season-releases.server.ts";
 
-export type Approved = { outcome: "scheduled" | "not_found" | "not_waiting" | "own_draft" | "changed" };
+export type Approved = { outcome: "scheduled" | "not_found" | "not_waiting" | "own_draft" | "changed" | "outdated" };
 
 /**
  * Approves an audited draft for publication at a moment, which may be now or have gone by. The approver is another person
- * than the drafter, and the draft's cells are those that were audited. `publishRelease` does the rest.
+ * than the drafter, the draft's cells are those that were audited, and no other survey of the season was published since.
+ * `publishRelease` does the rest.
  */
 export async function approveDraft(
 	trx: Trx,
@@ -23,8 +25,9 @@ export async function approveDraft(
 	if (draft.status !== "audited") return { outcome: "not_waiting" };
 	if (draft.drafted_by === viewer.personId) return { outcome: "own_draft" };
 	const cells = await listDraftCells(trx, releaseDraftId);
-	const passed = ReleaseAudit.parse(draft.audit).passed;
+	const { passed, heldAgainst } = ReleaseAudit.parse(draft.audit);
 	if (!passed || !isAsAudited(draft, ReleaseMethod.parse(draft.method), cells)) return { outcome: "changed" };
+	if (!(await isUpToDate(trx, draft.survey_id, heldAgainst))) return { outcome: "outdated" };
 	await trx
 		.updateTable("collect.release_draft")
 		.set({ status: "scheduled", decided_by: viewer.personId, decided_at: new Date(), publish_at: publishAt })

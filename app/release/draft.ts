@@ -127,6 +127,10 @@ export const ReleaseAudit = z.object({
 	seconds: z.number(),
 	/** By how much more is lost at most than any safe choice must lose, as a share; 0 is proven least, null is not known. */
 	gap: z.number().nullable().default(null),
+	/** Cells of which other surveys of the season tell, so that this release has less to keep. */
+	knownElsewhere: z.number().int().default(0),
+	/** Releases of other surveys of the season that there were when it was made. */
+	heldAgainst: z.array(z.string()).default([]),
 	failures: z.array(
 		z.object({
 			cellKey: z.string(),

@@ -4,14 +4,16 @@ import { isAsAudited, publishedChecksum } from "./checksums.server.ts";
 import { type DraftCell, ReleaseAudit, ReleaseMethod, ReleaseRules } from "./draft.ts";
 import { listDraftCells } from "./drafts.server.ts";
 import { keepForm } from "./kept-form.server.ts";
+import { isUpToDate } from "./season-releases.server.ts";
 import { publishedAudit, publishedMethod, publishedRows } from "./published-rows.ts";
 
 export type Published = { outcome: "published"; releaseId: string; number: number };
-export type NotPublished = { outcome: "not_found" | "not_waiting" | "not_yet" | "changed" };
+export type NotPublished = { outcome: "not_found" | "not_waiting" | "not_yet" | "changed" | "outdated" };
 
 /**
  * Publishes an approved draft whose minute has come as a numbered release, in the caller's transaction: all of it or nothing.
- * Only what may be shown is copied; a withheld cell becomes one word. The draft's cells must still be those that were audited.
+ * Only what may be shown is copied; a withheld cell becomes one word. The draft's cells must still be those that were audited,
+ * and no other survey of the season may have been published since.
  */
 export async function publishRelease(
 	trx: Trx,
@@ -26,11 +28,14 @@ export async function publishRelease(
 	const method = ReleaseMethod.parse(draft.method);
 	if (!isAsAudited(draft, method, cells)) return { outcome: "changed" };
 
+	const audit = ReleaseAudit.parse(draft.audit);
+	if (!(await isUpToDate(trx, draft.survey_id, audit.heldAgainst))) return { outcome: "outdated" };
+
 	const releaseId = releaseDraftId; // one release a draft: trying twice meets the key
 	const number = await insertRelease(trx, releaseId, {
 		draft,
 		method,
-		audit: ReleaseAudit.parse(draft.audit),
+		audit,
 		rules: ReleaseRules.parse(draft.rules),
 		cells,
 		codeVersion,

@@ -61,6 +61,13 @@ function calibrationInAll(calibrations: ReleaseMethod["calibrations"]) {
 }
 
 /** The audit without what names cells, and without how many are withheld for which reason, which is for the desk alone. */
-export function publishedAudit({ failures: _f, withheldForOwnSake: _w, shields: _s, ...audit }: ReleaseAudit) {
+export function publishedAudit({
+	failures: _f,
+	withheldForOwnSake: _w,
+	shields: _s,
+	knownElsewhere: _k,
+	heldAgainst: _h,
+	...audit
+}: ReleaseAudit) {
 	return audit;
 }

@@ -1,16 +1,17 @@
 import type { DraftCell } from "./draft.ts";
 
-export type ReasonGroup = "own" | "shield" | "revision" | "nobody_answered";
+export type ReasonGroup = "own" | "shield" | "revision" | "other_survey" | "nobody_answered";
 export type StatusCount = { kind: string; shown: number; withheld: number; noGrowers: number };
 
 /**
  * Why a cell is withheld, as the desk is told: for its own sake, as a shield, since too few answers changed since an earlier
- * release, or as nobody answered.
+ * release, as another survey withholds the same, or as nobody answered.
  */
 export function reasonGroup(cell: DraftCell): ReasonGroup | null {
 	if (cell.status !== "withheld") return null;
 	if (cell.reasons.includes("shield")) return "shield";
 	if (cell.reasons.every((reason) => reason === "revision")) return "revision";
+	if (cell.reasons.every((reason) => reason === "revision" || reason === "other_survey")) return "other_survey";
 	return cell.reasons.includes("nobody_answered") ? "nobody_answered" : "own";
 }
 

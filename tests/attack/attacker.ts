@@ -75,6 +75,11 @@ class Attack {
 		});
 	}
 
+	/** How far above and below the truth the aim may lie, for who knows no more than the rows. */
+	room(aim: Aim): [above: number, below: number] {
+		return [this.#push(aim, [], "Maximize") - aim.value, aim.value - this.#push(aim, [], "Minimize")];
+	}
+
 	#push({ terms }: Aim, known: readonly string[], side: "Maximize" | "Minimize"): number {
 		this.attacks += 1;
 		const sum = terms.map(([name, factor]) => `${factor < 0 ? "-" : "+"} ${name}`).join(" ");
@@ -205,6 +210,47 @@ export function attackEditions(highs: Highs, editions: readonly Seen[], rules: P
 	return aims
 		.filter((aim) => attack.finds(aim, [], ["Maximize", "Minimize"]))
 		.map(({ key }) => ({ key, quantity, attacker: "who kept every release" }));
+}
+
+/**
+ * Tries what one survey's release withholds, for who takes over from the release of another survey of the same growers
+ * every cell that it shows and in which each owner has as much in both. What these cells tell by themselves is no
+ * fault of this release: it may not bring anybody nearer.
+ */
+export function attackBeside(
+	highs: Highs,
+	{ there, here }: { there: Seen; here: Seen },
+	quantity: Amount,
+	rules: ProtectionRules,
+): { broken: Told[]; tried: number; knownBefore: number } {
+	const known = allKeys.filter((key) => there.shown.has(key) && hasSame(there.cells, here.cells, key, quantity));
+	const rows = (none: boolean) => {
+		const shown = allKeys.filter((key) => !here.cells.has(key) || (!none && here.shown.has(key)));
+		return [...new Set([...shown, ...known])].map(
+			(key) => `${sumOf(leavesOf(key).map(nameIn(0)))} = ${round(valueOf(here.cells, key, quantity))}`,
+		);
+	};
+	const [before, after] = [new Attack(highs, rows(true)), new Attack(highs, rows(false))];
+	const aims = cellAims(here.cells, here.shown, quantity, rules, nameIn(0)).filter(({ key }) => !known.includes(key));
+	const broken: Told[] = [];
+	let knownBefore = 0;
+	for (const aim of aims) {
+		const near = 1e-5 * (1 + aim.value);
+		const [above, below] = before.room(aim);
+		const left = Math.min(aim.level, above, aim.value < aim.level ? aim.level : below);
+		if (left < aim.level - near) knownBefore += 1;
+		const level = 0.98 * left;
+		if (after.finds({ ...aim, level }, [], ["Maximize", "Minimize"]))
+			broken.push({ key: aim.key, quantity, attacker: "who kept the release of another survey" });
+	}
+	return { broken, tried: aims.length, knownBefore };
+}
+
+function hasSame(there: Cells, here: Cells, key: string, quantity: Amount): boolean {
+	const owners = new Set([...(there.get(key)?.keys() ?? []), ...(here.get(key)?.keys() ?? [])]);
+	return [...owners].every(
+		(owner) => (there.get(key)?.get(owner)?.[quantity] ?? 0) === (here.get(key)?.get(owner)?.[quantity] ?? 0),
+	);
 }
 
 /** Cells in which nobody's answers differ from one release to another are known to be the same. */

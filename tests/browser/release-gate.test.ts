@@ -115,6 +115,11 @@ async function openLink(associate: Associate): Promise<Visitor> {
 /** A draft with all its cells, that only its status keeps from going out. */
 async function addTarget(drafter: Associate, status: Target["status"]): Promise<Target> {
 	const surveyId = await addAnsweredSurvey(owner, drafter);
+	// A season each: a draft that another survey's release has overtaken would be refused for that alone.
+	await owner.query(
+		"update collect.survey set season = (select max(season) + 1 from collect.survey) where survey_id = $1",
+		[surveyId],
+	);
 	const made = await asDesk(drafter, async (trx) => {
 		await closeSurvey(trx, drafter, surveyId);
 		return createDraft(trx, drafter, surveyId, networkRules);

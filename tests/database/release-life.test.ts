@@ -229,3 +229,25 @@ test("a withdrawn release serves no figure and keeps its address; a revision can
 	await decide(second, { decision: "publish" });
 	expect(await findReleaseById(second)).toMatchObject({ edition: 2, withdrawn: null });
 });
+
+test("of two drafts made at once in one season the second is refused, and made again it is held against the first", async () => {
+	const late = await draft();
+	const lateSurvey = surveyId;
+	surveyId = await addAnsweredSurvey(owner, associate);
+	await asDesk(associate, (trx) => closeSurvey(trx, associate, surveyId));
+	const early = await draft();
+	expect(await decide(early, { decision: "publish" })).toMatchObject({ done: "published" });
+
+	expect(await decide(late, { decision: "publish" })).toEqual({ refused: "outdated" });
+	const set = { decision: "schedule", publishOn: "2099-05-03", publishAt: "08:00" } as const;
+	expect(await decide(late, set, coordinator, new Date("2099-05-01"))).toEqual({ refused: "outdated" });
+	expect(await statusOf(late)).toBe("audited");
+
+	surveyId = lateSurvey;
+	const again = await draft();
+	const { rows } = await owner.query("select audit from collect.release_draft where release_draft_id = $1", [again]);
+	expect(rows[0].audit.heldAgainst).toContain(early);
+	expect(await decide(again, { decision: "publish" })).toMatchObject({ done: "published" });
+	const release = await owner.query("select audit from release.release where release_id = $1", [again]);
+	expect(Object.keys(release.rows[0].audit)).not.toContain("heldAgainst");
+});

@@ -29,7 +29,7 @@ type ReportRow = {
 	name: string;
 	parent: string;
 	status: "shown" | "withheld" | "no_growers";
-	reason: "own" | "shield" | "revision" | "nobody_answered" | null;
+	reason: "own" | "shield" | "revision" | "other_survey" | "nobody_answered" | null;
 	respondents: number | null;
 	figures: ReportFigure[];
 };
@@ -43,6 +43,7 @@ export type DraftReportProps = {
 		seconds: number;
 		gap: number | null;
 		failures: { beyondHelp?: boolean }[];
+		knownElsewhere: number;
 	};
 	rules: Record<"minimumOwners" | "dominancePercent" | "steadyCv" | "careCv" | "steadyDays" | "careDays", number>;
 	asked: number;
@@ -105,6 +106,14 @@ function AuditFacts({ audit, rules, asked, answered, setAside, joinCount, checks
 				...(beyondHelp === 0
 					? []
 					: [{ term: t("audit.beyondHelp"), detail: t("audit.beyondHelpDetail", { count: beyondHelp }) }]),
+				...(audit.knownElsewhere === 0
+					? []
+					: [
+							{
+								term: t("audit.otherSurveys"),
+								detail: t("audit.otherSurveysDetail", { count: audit.knownElsewhere }),
+							},
+						]),
 				{
 					term: t("audit.tried"),
 					detail: t("audit.triedDetail", {
