@@ -21,10 +21,14 @@ export function makeRequestsReadable(): void {
 export function readableAddress(address: string): string {
 	const end = address.indexOf("?");
 	const path = end === -1 ? address : address.slice(0, end);
+	return isReadable(path) ? address : path.replaceAll("%", "%25") + address.slice(path.length);
+}
+
+function isReadable(path: string): boolean {
 	try {
-		decodeURIComponent(path);
-		return address;
+		// Compared, since a build leaves out a call whose value nobody uses.
+		return decodeURIComponent(path) !== "";
 	} catch {
-		return path.replaceAll("%", "%25") + address.slice(path.length);
+		return false;
 	}
 }
