@@ -1,5 +1,5 @@
 import type { Client } from "pg";
-import type { Browser } from "playwright-core";
+import type { Browser, Route } from "playwright-core";
 import { afterAll, afterEach, beforeAll, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { closeSurvey } from "#app/collect/survey-opening.server.ts";
@@ -108,6 +108,23 @@ test("a page that was drawn before the server had an answer shows it all the sam
 	await expect.poll(() => page.inputValue("[name=harvested]")).toBe("55");
 	await page.fill("[name=harvested]", "56");
 	await expect.poll(() => heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 56 });
+});
+
+test("what is typed before the page's script is there is not covered by what the phone held", async () => {
+	const grower = await asked();
+	const page = await openPhone(browser, grower, { serviceWorkers: "block" });
+	await page.route("**/keep/**", (route) => route.abort());
+	await page.fill("[name=harvested]", "57");
+	await word(page).getByText("Kept on this phone", { exact: false }).waitFor();
+	const scripts: Route[] = [];
+	await page.route("**/*.js", (route) => void scripts.push(route));
+	await page.goto(grower.ask, { waitUntil: "commit" });
+	await page.fill("[name=harvested]", "58");
+	await page.unroute("**/keep/**");
+	expect(scripts.length).toBeGreaterThan(0);
+	await Promise.all(scripts.map((script) => script.continue()));
+	await expect.poll(() => heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 58 });
+	expect(await page.inputValue("[name=harvested]")).toBe("58");
 });
 
 test("two phones change one screen: each is told, both answers are shown, and one is chosen", async () => {

@@ -67,10 +67,14 @@ export function ScreenView({ shown, posted, place, phone }: ScreenViewProps) {
 			</div>
 			{shown.isLate && <LateNotice />}
 			<ErrorSummary problems={problems} labels={labels} />
-			{/* A screen of its own: boxes of one step must not carry their text into the next. */}
+			{/*
+			 * A screen of its own: boxes of one step must not carry their text into the next. What the server or the phone holds
+			 * is put into them, which the browser's own memory of an earlier view would cover.
+			 */}
 			<Form
 				key={step.key}
 				method="post"
+				autoComplete="off"
 				encType={questions.some(({ type }) => type === "photo") ? "multipart/form-data" : undefined}
 				noValidate
 				data-answering=""

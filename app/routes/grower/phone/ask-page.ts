@@ -1,6 +1,6 @@
 import { emptyOutbox, sending, settle, type, type Typed, typedStep } from "#app/collect/outbox.ts";
 import type { StepValues } from "#app/collect/posted.ts";
-import { fill, setHidden, valuesIn } from "./form-values.ts";
+import { fill, setHidden, valuesDrawn, valuesIn } from "./form-values.ts";
 import { sayKept } from "./kept-word.ts";
 import type { BegunPage } from "./page-data.ts";
 import { change, type Sending, sendWaiting } from "./send.ts";
@@ -47,14 +47,14 @@ export async function startAskPage(
 		signal,
 		from: null,
 		held: undefined,
-		recorded: JSON.stringify(valuesIn(form)),
+		// Whoever types before this script is there has typed already.
+		recorded: JSON.stringify(valuesDrawn(form)),
 		turn: Promise.resolve(),
 		sending: "sent",
 		twice: false,
 	};
 	await showHeld(ask);
 	listen(ask);
-	// Whoever typed before the store was open, typed already.
 	void record(ask).then(() => send(ask));
 	return ask;
 }

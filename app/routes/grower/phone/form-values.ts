@@ -5,6 +5,13 @@ export function valuesIn(form: HTMLFormElement, submitter: HTMLElement | null = 
 	return valuesOf(new FormData(form, submitter));
 }
 
+/** What the boxes held when the screen was drawn, whatever has been typed since. */
+export function valuesDrawn(form: HTMLFormElement): StepValues {
+	const drawn = form.cloneNode(true) as HTMLFormElement;
+	drawn.reset();
+	return valuesIn(drawn);
+}
+
 export function valuesOf(posted: FormData): StepValues {
 	const values: StepValues = {};
 	for (const [name, value] of posted) {
