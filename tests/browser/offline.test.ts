@@ -297,6 +297,8 @@ test("going on while the server is away is answered by the phone, and by the ser
 	await page.locator("[name=first_harvest]").waitFor();
 	await page.fill("[name=first_harvest]", "2031-09-02");
 	await stack.start("server");
+	// The phone is told of its signal; that it tries by itself, too, is waited for where a server was killed.
+	await page.evaluate(() => window.dispatchEvent(new Event("online")));
 	await expect
 		.poll(() => heldByServer(owner, grower.place.surveyId), { timeout: 60_000 })
 		.toMatchObject({ harvested: 4000 });
