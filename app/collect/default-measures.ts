@@ -2,18 +2,11 @@ import { questionsOfMeasure } from "#app/lib/measure-questions.ts";
 import type { Words } from "#app/lib/words.ts";
 import type { Condition, FormDefinition, Measure, Question, Screen } from "./form.ts";
 import { knownTrees, knownTreesBase } from "./forms/known-trees.ts";
+import { unitOfFamily } from "./quantity-unit.ts";
 
 type Common = Pick<Measure, "worse" | "base" | "acrossCrops" | "denominator">;
 
 const common: Common = { worse: null, base: false, acrossCrops: true, denominator: { one: true } };
-const units = {
-	mass: "lb",
-	area: "acres",
-	temperature: "fahrenheit",
-	length: "row_feet",
-	trees: "trees",
-	count: "count",
-} as const;
 
 /**
  * A form with measures for the questions that none of its own measures names, so that an associate's own questions are
@@ -58,7 +51,7 @@ function numberMeasures(question: Extract<Question, { type: "number" }>, perPlan
 	const isTemperature = unitFamily === "temperature";
 	if (isTemperature && perPlanting) return [];
 	const numerator = { terms: [{ question: key, times: 1 }] };
-	const shape = { unit: units[unitFamily], decimals: isTemperature ? 1 : 0, scale: 1, numerator };
+	const shape = { unit: unitOfFamily[unitFamily], decimals: isTemperature ? 1 : 0, scale: 1, numerator };
 	const hue = isTemperature ? ("cold" as const) : ("yield" as const);
 	const mean: Measure = {
 		...common,

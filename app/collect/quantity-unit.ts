@@ -1,6 +1,7 @@
 import type { FormDefinition, Measure, Quantity, Term } from "./form.ts";
 
-const unitOfFamily = {
+/** What answers of a number question are kept in, as figures name it. */
+export const unitOfFamily = {
 	mass: "lb",
 	area: "acres",
 	temperature: "fahrenheit",

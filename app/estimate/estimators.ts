@@ -6,8 +6,8 @@ import { linearizedVariance, type LoneRespondent } from "#app/estimate/variance.
 export type Figure = { value: number; standardError: number };
 
 /**
- * Estimators of a domain in a stratified sample. All take every stratum of the design that has respondents, also those
- * with nobody in the domain, and return null where there is nothing to estimate. A domain with one respondent gets a
+ * Estimators of a domain in a stratified sample. All take the strata of the design that hold somebody of the domain; others may
+ * be given and add nothing. They return null where there is nothing to estimate. A domain with one respondent gets a
  * standard error of 0 from `meanEstimate` and `ratioEstimate`, since one answer has no spread about itself: that is not
  * precision, and `estimateCell` does not pass it on.
  * Checked: R survey 4.1-1 `svytotal`, `svymean`, `svyratio`, `svyby`, in tests/reference.

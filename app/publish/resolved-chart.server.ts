@@ -5,7 +5,7 @@ import type { ReleaseMeasure } from "./release.ts";
 import type { Block } from "./report.ts";
 import { findEarlier, type SeasonCell, type Source, told, type Told } from "./report-source.server.ts";
 
-type Area = Pick<Cell, "areaKey" | "areaName" | "kind" | "stateFips">;
+type Area = Pick<Cell, "areaKey" | "areaName" | "kind">;
 /** One chart with all of its figures. `worse` says which end is bad news. */
 export type ResolvedChart =
 	| { chart: "crops"; measure: Told; worse: ReleaseMeasure["worse"]; area: Area; rows: CropCell[] }
@@ -108,4 +108,4 @@ async function causesChart(
 	return { chart: "causes", measure: told(measure), parts: parts.map(told), area, rows };
 }
 
-const areaOf = ({ areaKey, areaName, kind, stateFips }: Cell): Area => ({ areaKey, areaName, kind, stateFips });
+const areaOf = ({ areaKey, areaName, kind }: Cell): Area => ({ areaKey, areaName, kind });

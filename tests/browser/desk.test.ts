@@ -1,7 +1,7 @@
 import type { Browser, Page } from "playwright-core";
 import { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
-import { axeFindings, openBrowser, openPage, phone, signIn } from "#tests/helpers/browser.ts";
+import { axeFindings, openBrowser, openPage, phone, signIn, signInAsAssociate } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
 
 let stack: Stack;
@@ -26,11 +26,7 @@ beforeAll(async () => {
 			[name, county, email],
 		);
 	associate = await openPage(browser);
-	await signIn(associate, stack.baseUrl, "Del Fenwick");
-	await owner.query(
-		`insert into auth.role_grant (person_id, role, state_fips)
-		select person_id, 'associate', s from auth.person, unnest(array['19', '55']) s where subject = 'demo-del-fenwick'`,
-	);
+	await signInAsAssociate(associate, stack.baseUrl, owner, ["19", "55"]);
 	await owner.end();
 });
 afterAll(async () => {

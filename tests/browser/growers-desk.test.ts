@@ -1,7 +1,7 @@
 import type { Browser, Page } from "playwright-core";
 import { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
-import { axeFindings, openBrowser, openPage, phone, signIn } from "#tests/helpers/browser.ts";
+import { axeFindings, openBrowser, openPage, phone, signInAsAssociate } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
 
 let stack: Stack;
@@ -25,11 +25,7 @@ beforeAll(async () => {
 			[name, email, crop],
 		);
 	associate = await openPage(browser);
-	await signIn(associate, stack.baseUrl, "Del Fenwick");
-	await owner.query(
-		`insert into auth.role_grant (person_id, role, state_fips)
-		select person_id, 'associate', '19' from auth.person where subject = 'demo-del-fenwick'`,
-	);
+	await signInAsAssociate(associate, stack.baseUrl, owner, ["19"]);
 	await owner.end();
 });
 afterAll(async () => {

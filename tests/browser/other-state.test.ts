@@ -5,7 +5,7 @@ import { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { readyForms } from "#app/collect/forms/ready-forms.ts";
 import { filled, listAddresses, paramsOf } from "#tests/helpers/addresses.ts";
-import { openBrowser, openPage, signIn } from "#tests/helpers/browser.ts";
+import { openBrowser, openPage, signInAsAssociate } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
 import { fillWithHolders } from "#tests/walls/row-owners.ts";
 
@@ -83,11 +83,7 @@ beforeAll(async () => {
 	theirs = { ...(await idsOf(wisconsin, surveyId)), formId: await addForm("theirs", "55"), ...part };
 	ours = { ...(await idsOf(iowa, sharedSurvey, neighbor)), formId: await addForm("ours", "19"), ...part };
 	associate = await openPage(browser);
-	await signIn(associate, stack.baseUrl, "Del Fenwick");
-	await owner.query(
-		`insert into auth.role_grant (person_id, role, state_fips)
-		select person_id, 'associate', '19' from auth.person where subject = 'demo-del-fenwick'`,
-	);
+	await signInAsAssociate(associate, stack.baseUrl, owner, ["19"]);
 });
 afterAll(async () => {
 	await owner?.end();

@@ -1,7 +1,7 @@
 import { Client } from "pg";
 import type { Browser } from "playwright-core";
 import { afterAll, beforeAll, expect, test } from "vitest";
-import { axeFindings, openBrowser, openPage, signIn } from "#tests/helpers/browser.ts";
+import { axeFindings, openBrowser, openPage, signInAsAssociate } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
 import { checkInvitations, readInbox } from "./season/mails.ts";
 import { badRows, goodGrowers, mendedFile, mendedGrowers, messyFile, notToBeMailed } from "./season/messy-list.ts";
@@ -27,11 +27,7 @@ beforeAll(async () => {
 			[name, email, index === 2, index === 2 ? new Date() : null, county, trees - 10],
 		);
 	page = await openPage(browser);
-	await signIn(page, stack.baseUrl, "Del Fenwick");
-	await owner.query(
-		`insert into auth.role_grant (person_id, role, state_fips)
-		select person_id, 'associate', '19' from auth.person where subject = 'demo-del-fenwick'`,
-	);
+	await signInAsAssociate(page, stack.baseUrl, owner, ["19"]);
 });
 afterAll(async () => {
 	await owner?.end();

@@ -1,4 +1,5 @@
 import { AxeBuilder } from "@axe-core/playwright";
+import type { Client } from "pg";
 import { type Browser, type BrowserContextOptions, chromium, type Page } from "playwright-core";
 
 const flags = [
@@ -70,4 +71,14 @@ export async function signIn(page: Page, baseUrl: string, name: string): Promise
 	await page.goto(`${baseUrl}/sign-in/start`);
 	await page.getByText(name, { exact: false }).first().click();
 	await page.waitForURL(`${baseUrl}/**`);
+}
+
+/** Signs Del Fenwick in and grants these states, as the first coordinator would. */
+export async function signInAsAssociate(page: Page, baseUrl: string, owner: Client, states: string[]): Promise<void> {
+	await signIn(page, baseUrl, "Del Fenwick");
+	await owner.query(
+		`insert into auth.role_grant (person_id, role, state_fips)
+		select person_id, 'associate', s from auth.person, unnest($1::text[]) s where subject = 'demo-del-fenwick'`,
+		[states],
+	);
 }

@@ -89,8 +89,8 @@ function RequestCard({ request, actionData, form }: CardProps) {
 			<DescriptionList
 				items={[
 					{ term: t("requests.email"), detail: request.email ?? "" },
-					{ term: t("access.affiliation"), detail: request.affiliation },
-					{ term: t("access.purpose"), detail: <p className="whitespace-pre-line">{request.purpose}</p> },
+					{ term: t("requests.affiliation"), detail: request.affiliation },
+					{ term: t("requests.purpose"), detail: <p className="whitespace-pre-line">{request.purpose}</p> },
 					...(request.decision ? [] : [{ term: t("requests.before"), detail: accessBefore(request, format, t) }]),
 					{ term: t("requests.when"), detail: format.moment(request.requestedAt) },
 					{ term: t("requests.agreement"), detail: request.agreementVersion },

@@ -55,7 +55,11 @@ export function AreaFinder({ kind, areas, chosen, search, onChoose }: AreaFinder
 	return (
 		<search>
 			<Form method="get" preventScrollReset onSubmit={send} className="no-print mb-6">
-				{[...address].map(([key, value]) => key !== name && <input key={key} type="hidden" name={key} value={value} />)}
+				{/* What was chosen before gives way, so that a name which leads nowhere is told. */}
+				{[...address].map(
+					([key, value]) =>
+						key !== name && key !== "area" && <input key={key} type="hidden" name={key} value={value} />,
+				)}
 				<FieldFrame problem={problem}>
 					<label htmlFor={fieldId(name)} className="font-bold">
 						{label}

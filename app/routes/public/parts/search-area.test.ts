@@ -5,7 +5,6 @@ const counties = Array.from({ length: 15 }, (_, index) => ({
 	areaKey: `19${index}`,
 	areaName: index === 0 ? "Story" : `Lake ${index}`,
 	kind: "county" as const,
-	stateFips: "19",
 }));
 const address = "https://survey.example/map?release=3&area=55001&find=typed";
 const search = (typed: string | undefined) =>

@@ -2,7 +2,7 @@ import { redirect } from "react-router";
 import { areasNamed } from "#app/publish/areas-named.ts";
 import type { MapCell } from "#app/publish/cell.ts";
 
-export type FoundArea = Pick<MapCell, "areaKey" | "areaName" | "kind" | "stateFips">;
+export type FoundArea = Pick<MapCell, "areaKey" | "areaName" | "kind">;
 /** What was typed to find an area by, and the areas that it may mean where that is not just one. */
 export type AreaSearch = { typed: string; areas: FoundArea[]; more: boolean };
 
@@ -30,9 +30,4 @@ export function searchArea(
 	throw redirect(`${pathname}?${searchParams}`);
 }
 
-const named = ({ areaKey, areaName, kind, stateFips }: FoundArea): FoundArea => ({
-	areaKey,
-	areaName,
-	kind,
-	stateFips,
-});
+const named = ({ areaKey, areaName, kind }: FoundArea): FoundArea => ({ areaKey, areaName, kind });

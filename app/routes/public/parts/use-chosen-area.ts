@@ -6,15 +6,17 @@ const pause = 300;
 
 /**
  * The area chosen on the map: at once for the eye and the ear, a moment later in the address, so that a link reproduces
- * the view. Another map (release, measure, crop, kind of area) begins with what its own address says.
+ * the view. Another map (release, measure, crop, kind of area), or a name that was searched for and is no area's, begins
+ * with what its own address says.
  */
 export function useChosenArea(): [string | null, (areaKey: string | null) => void] {
 	const navigate = useNavigate();
 	const [search] = useSearchParams();
 	const inAddress = search.get("area") || null;
 	const map = withArea(search, null);
-	const [chosen, setChosen] = useState({ map, areaKey: inAddress });
-	const areaKey = chosen.map === map ? chosen.areaKey : inAddress;
+	const asked = `${map} ${search.get("find") ?? ""}`;
+	const [chosen, setChosen] = useState({ asked, areaKey: inAddress });
+	const areaKey = chosen.asked === asked ? chosen.areaKey : inAddress;
 
 	useEffect(() => {
 		if (areaKey === inAddress) return;
@@ -23,7 +25,7 @@ export function useChosenArea(): [string | null, (areaKey: string | null) => voi
 		return () => clearTimeout(waiting);
 	}, [areaKey, inAddress, map, navigate]);
 
-	const choose = useCallback((next: string | null) => setChosen({ map, areaKey: next }), [map]);
+	const choose = useCallback((next: string | null) => setChosen({ asked, areaKey: next }), [asked]);
 	return [areaKey, choose];
 }
 

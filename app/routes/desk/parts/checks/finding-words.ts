@@ -1,4 +1,5 @@
 import { useTranslation } from "react-i18next";
+import { unitOfFamily } from "#app/collect/quantity-unit.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { decimalsOf, type FigureShape, type Unit } from "#app/lib/format.ts";
@@ -6,15 +7,7 @@ import type { Odd } from "#app/review/odd-answers.ts";
 import type { Moved } from "#app/review/save-findings.server.ts";
 import type { MovedMeasure, ToldUnit } from "./queue.server.ts";
 
-const unitOfFamily: Record<NonNullable<ToldUnit>, Unit> = {
-	mass: "lb",
-	area: "acres",
-	temperature: "fahrenheit",
-	length: "row_feet",
-	trees: "trees",
-	count: "count",
-	percent: "percent",
-};
+const unitOf: Record<NonNullable<ToldUnit>, Unit> = { ...unitOfFamily, percent: "percent" };
 
 /** An amount in the kept unit of its question: whole where it is large, to a tenth or finer where it is small. */
 export function useAmount() {
@@ -23,7 +16,7 @@ export function useAmount() {
 		const decimals = Math.abs(value) >= 100 ? 0 : Math.min(1, decimalsOf(value));
 		return unit === null || unit === "count"
 			? format.number(value, decimals)
-			: format.quantity(value, unitOfFamily[unit], decimals);
+			: format.quantity(value, unitOf[unit], decimals);
 	};
 }
 
