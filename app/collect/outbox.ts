@@ -63,6 +63,8 @@ export function type(
 	typed: Typed,
 ): { outbox: Outbox; outcome: "typed" | "typed_here" } {
 	const before = typedStep(outbox, stepKey);
+	// A page's last words come by its note and by itself.
+	if (before?.changeId === typed.changeId) return { outbox, outcome: "typed" };
 	const isOwn = before !== undefined && before.changeId === typed.from;
 	if (before && !isOwn && before.state !== "kept") return { outbox, outcome: "typed_here" };
 	const { from: _, ...said } = typed;

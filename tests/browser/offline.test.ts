@@ -73,6 +73,29 @@ test("Back, the browser's and the page's own, loses nothing that was typed", asy
 	await expect.poll(() => page.inputValue("[name=harvested]")).toBe("62");
 });
 
+test("what was typed last is not lost where the browser ends the page before the phone's store has written it", async () => {
+	const grower = await asked();
+	const page = await openPhone(browser, grower);
+	await page.route("**/keep/**", (route) => route.abort());
+	await page.fill("[name=harvested]", "63");
+	await word(page).getByText("Kept on this phone", { exact: false }).waitFor();
+	// A store that is kept busy has not written anything by the time the page ends.
+	await page.evaluate(async () => {
+		const opening = indexedDB.open("tallygrove-answers");
+		await new Promise((resolve) => opening.addEventListener("success", resolve));
+		const held = opening.result.transaction("held", "readwrite").objectStore("held");
+		const stay = () => held.count().addEventListener("success", stay);
+		stay();
+	});
+	await page.fill("[name=harvested]", "64");
+	await page.goto(grower.address);
+	expect(await heldByServer(owner, grower.place.surveyId)).toEqual({});
+	await page.unroute("**/keep/**");
+	await page.goto(grower.ask);
+	await expect.poll(() => page.inputValue("[name=harvested]")).toBe("64");
+	await expect.poll(() => heldByServer(owner, grower.place.surveyId)).toMatchObject({ harvested: 64 });
+});
+
 test("without signal it is kept on the phone, also when the window is closed, and sent when signal is back", async () => {
 	const grower = await asked();
 	const page = await openPhone(browser, grower);

@@ -1,6 +1,7 @@
 import { letGo, typedStep, type TypedStep } from "#app/collect/outbox.ts";
 import { type AskPage, newHeld, record, showsBoth, typedNow, typeInto } from "./ask-page.ts";
 import { setHidden, valuesIn } from "./form-values.ts";
+import { dropNote, writeNote } from "./leaving-note.ts";
 import { change, fieldsOf, postStep, sendWaiting, stopSending } from "./send.ts";
 
 /** Ways off a screen that the server drew: each first makes sure of what was typed. */
@@ -18,9 +19,15 @@ export function listenForLeaving(ask: AskPage): void {
 		event.preventDefault();
 		void followLink(ask, link, state);
 	});
-	const leave = () => state.leaving || sendAtOnce(ask);
-	window.addEventListener("pagehide", leave);
-	document.addEventListener("visibilitychange", () => document.visibilityState === "hidden" && leave());
+	listenForHiding(ask, () => state.leaving);
+}
+
+/** The page is being closed, covered or left by the browser's own ways. */
+export function listenForHiding(ask: AskPage, isLeaving: () => boolean): void {
+	const { signal } = ask;
+	const leave = () => isLeaving() || sendAtOnce(ask);
+	window.addEventListener("pagehide", leave, { signal });
+	document.addEventListener("visibilitychange", () => document.visibilityState === "hidden" && leave(), { signal });
 }
 
 /**
@@ -83,8 +90,8 @@ async function followLink(ask: AskPage, link: HTMLAnchorElement, state: { leavin
 }
 
 /**
- * The page is being left by other ways, and nothing can be waited for: what was typed last goes to the server and to the phone
- * side by side, under one name.
+ * The page is being left by other ways, and nothing can be waited for: what was typed last goes to the server, to the phone
+ * and into a note for the next page side by side, under one name.
  */
 function sendAtOnce(ask: AskPage): void {
 	const { page, form, store } = ask;
@@ -99,8 +106,11 @@ function sendAtOnce(ask: AskPage): void {
 	// A page that came back as it was left does not know whether another page has sent its earlier change since.
 	const unsure = [...step.unsure, ...(ask.from === null ? [] : [ask.from])];
 	Object.assign(ask, { from: typed.changeId, recorded: text, held: now.held });
+	writeNote({ held: newHeld(page), stepKey: page.stepKey, typed });
 	void postStep(page, page.stepKey, { ...step, unsure }, true).catch(() => null);
-	void store.change(page.responseId, (held) => typeInto(held ?? newHeld(page), page.stepKey, typed, mark).held);
+	void store
+		.change(page.responseId, (held) => typeInto(held ?? newHeld(page), page.stepKey, typed, mark).held)
+		.then(() => dropNote(typed.changeId));
 }
 
 /** What a store or a server takes too long for, nobody waits for. */

@@ -1,6 +1,7 @@
 import { askToSendIn, awaitsReceipt, emptyOutbox, listUnsettled, settle } from "#app/collect/outbox.ts";
 import { listenForLeaving } from "./ask-leaving.ts";
 import { startAskPage } from "./ask-page.ts";
+import { openPageStore } from "./leaving-note.ts";
 import { keepPack } from "./pack.ts";
 import { type BegunPage, type PageData, readPage } from "./page-data.ts";
 import { startRefusedPage } from "./refused-page.ts";
@@ -8,7 +9,7 @@ import { startReviewPage } from "./review-page.ts";
 import { isReadyToSendIn, receiptOf, reviewOf } from "./send-in.ts";
 import { change, sendWaiting } from "./send.ts";
 import { sendPhotos } from "./send-photos.ts";
-import { type Held, openStore, type PhoneStore } from "./store.ts";
+import type { Held, PhoneStore } from "./store.ts";
 
 /*
  * The script of a grower's pages, which work without it: it keeps what is typed, on the phone and at the server, and says so.
@@ -21,7 +22,7 @@ document.querySelector<HTMLElement>("[role=alert][tabindex='-1']")?.focus();
 
 async function start(): Promise<void> {
 	const page = readPage();
-	const store = await openStore();
+	const store = await openPageStore();
 	if (!page) {
 		await startRefusedPage(store);
 		return;

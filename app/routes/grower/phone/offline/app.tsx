@@ -4,8 +4,8 @@ import { I18nextProvider, initReactI18next } from "react-i18next";
 import { createBrowserRouter, type DataRouter, RouterProvider } from "react-router";
 import { typedStep } from "#app/collect/outbox.ts";
 import { i18nextSettings } from "#app/i18n/settings.ts";
+import { openPageStore } from "../leaving-note.ts";
 import type { Pack } from "../pack.ts";
-import { openStore } from "../store.ts";
 import { here } from "./here.ts";
 import { routes } from "./pages.tsx";
 import { findSurvey } from "./survey.ts";
@@ -18,7 +18,7 @@ import { watchForSignal } from "./watch.ts";
 void start();
 
 async function start(): Promise<void> {
-	here.store = await openStore();
+	here.store = await openPageStore();
 	const survey = await findSurvey(here.store, location.pathname);
 	const place = document.getElementById("offline");
 	if (!survey || !place) return;

@@ -8,6 +8,7 @@ import { Sheet } from "#app/components/shell.tsx";
 import { HelpLine } from "#app/components/site-footer.tsx";
 import { ReviewView } from "../../parts/review-view.tsx";
 import { ScreenView } from "../../parts/screen-view.tsx";
+import { listenForHiding } from "../ask-leaving.ts";
 import { startAskPage } from "../ask-page.ts";
 import { readPage } from "../page-data.ts";
 import { startPhotoPage } from "../photos/photo-page.ts";
@@ -75,6 +76,7 @@ function keepScreen(stepKey: string): () => void {
 		void startAskPage(here.store, { ...page, stepKey, responseId, told }, form, ending.signal).then((ask) => {
 			if (ending.signal.aborted) return;
 			here.ask = ask;
+			listenForHiding(ask, () => false);
 			if (form.querySelector("input[type=file]")) void startPhotoPage(ask);
 		});
 	}
