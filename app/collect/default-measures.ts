@@ -129,7 +129,7 @@ function optionMeasure(
 		label: { en: `${name.en}: ${option.text.en}`, es: `${name.es}: ${option.text.es}` },
 		description: {
 			en: `Share of operations that answered “${option.text.en}” to: ${question.text.en}`,
-			es: `Parte de las fincas que respondieron «${option.text.es}» a: ${question.text.es}`,
+			es: `Parte de las fincas que respondieron “${option.text.es}” a: ${question.text.es}`,
 		},
 		unit: "percent",
 		decimals: 0,

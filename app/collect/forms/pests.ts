@@ -105,8 +105,8 @@ function pestScreen(pest: Pest): Screen {
 				text: { en: "Did it mark or spoil the fruit?", es: "¿Marcó o echó a perder la fruta?" },
 				label: { en: "What it did to the fruit", es: "Lo que le hizo a la fruta" },
 				help: {
-					en: "Rotten fruit, and fruit from the ground, can make people sick: ask your extension office before you sell or press any.",
-					es: "La fruta podrida o recogida del suelo puede enfermar a la gente: consulte a su oficina de extensión antes de venderla o exprimirla.",
+					en: "Moldy or rotten fruit and nuts make people sick: throw them out. Ask your extension office before you sell or press fallen fruit.",
+					es: "La fruta y las nueces podridas o con moho enferman a la gente: tírelas. Consulte a su oficina de extensión antes de vender o exprimir fruta caída.",
 				},
 				required: true,
 				sensitive: false,

@@ -42,7 +42,8 @@ export function ColumnsForm({ columns, choices, values, problems }: ColumnsFormP
 		areaUnit: (["acre", "ha"] as const).map((value) => ({ value, label: t(`grower:screen.unit.${value}`) })),
 		massUnit: unitsFor("mass", 1).map((value) => ({ value, label: t(`grower:screen.unit.${value}`) })),
 	};
-	const plain = { written: i18n.language, language: i18n.language, areaUnit: "acre", massUnit: "lb" };
+	// Spanish speakers in the states write 1,250.5 too.
+	const plain = { written: "en", language: i18n.language, areaUnit: "acre", massUnit: "lb" };
 	const labels = Object.fromEntries([
 		...importFields.map((field) => [`columns.${field}`, t(`import.field.${field}`)]),
 		...settings.map((name) => [name, t(`import.setting.${name}`)]),
