@@ -41,7 +41,7 @@ test("with the sign-in service gone, signing in says so in the visitor's languag
 	const visitor = httpVisitor(stack.baseUrl, "es");
 	const { location } = await visitor.get("/sign-in/start");
 	const page = await visitor.get(location);
-	expect(page.text).toContain("El servicio de entrada no responde");
+	expect(page.text).toContain("El servicio de inicio de sesión no responde");
 	expect((await visitor.get("/map")).status).toBe(200);
 	await stack.start("signIn");
 	expect((await visitor.get("/sign-in/start")).location).toContain("/authorize?");
