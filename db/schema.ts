@@ -564,6 +564,10 @@ export interface DirectoryNetworkRules {
 }
 
 export interface DirectoryOperation {
+  /**
+   * Of its plantings that were not taken out. Kept by triggers on directory.planting alone.
+   */
+  all_bearing_trees: Generated<number>;
   contact_name: string;
   county_fips: string;
   created_at: Generated<Timestamp>;

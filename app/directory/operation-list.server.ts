@@ -20,7 +20,7 @@ export async function listOperations(trx: Trx, viewer: Associate, query: Operati
 	const { total } = await matching.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
 	const order = orderOf(query);
 	const page = await pageByKey(order, query, pageSize, ({ beyond, inOrder, place, limit }) =>
-		sorted(matching, query)
+		matching
 			.where(beyond)
 			.select(["o.operation_id as operationId", place.as("place")])
 			.orderBy(inOrder)
@@ -43,7 +43,7 @@ export async function listMatchingIds(
 	narrowing: Narrowing = null,
 ): Promise<string[]> {
 	const { keys, direction } = orderOf(query);
-	const ids = await sorted(matchingOperations(trx, viewer, query, narrowing), query)
+	const ids = await matchingOperations(trx, viewer, query, narrowing)
 		.select("o.operation_id as operationId")
 		.orderBy(keys[0]!.by, direction)
 		.orderBy("o.operation_id", direction)
@@ -59,7 +59,7 @@ export async function listByIds(trx: Trx, viewer: Associate, ids: string[]) {
 		.where((eb) => eb("o.operation_id", "=", eb.fn.any(eb.val(ids))))
 		.innerJoinLateral(growing, (join) => join.onTrue())
 		.select(rowColumns)
-		.select(["g.crop_keys as cropKeys", "g.bearing_trees as bearingTrees"])
+		.select(["g.crop_keys as cropKeys", "o.all_bearing_trees as bearingTrees"])
 		.execute();
 	const byId = new Map(
 		rows.map((row) => [
@@ -74,16 +74,8 @@ export async function listByIds(trx: Trx, viewer: Associate, ids: string[]) {
 const isListed = sql<boolean>`(o.left_at is null and o.status <> 'merged')`;
 
 /** What each grows now; what was taken out is left aside. */
-const growing = sql<{ crop_keys: string[]; bearing_trees: number }>`(select
-		coalesce(array_agg(distinct p.crop_key), '{}') as crop_keys, coalesce(sum(p.bearing_trees), 0) as bearing_trees
+const growing = sql<{ crop_keys: string[] }>`(select coalesce(array_agg(distinct p.crop_key), '{}') as crop_keys
 	from directory.planting p where p.operation_id = o.operation_id and p.removed_on is null)`.as<"g">(sql.ref("g"));
-
-type Matching = ReturnType<typeof matchingOperations>;
-
-/** Trees are added up for every row where they are sorted by, and only there. */
-function sorted(matching: Matching, { sort }: OperationQuery) {
-	return matching.$if(sort === "trees", (rows) => rows.innerJoinLateral(growing, (join) => join.onTrue()));
-}
 
 function orderOf({ sort, direction }: OperationQuery): Order {
 	const id = { by: sql.ref("o.operation_id"), kind: "uuid" } as const;
@@ -91,7 +83,7 @@ function orderOf({ sort, direction }: OperationQuery): Order {
 		name: { by: sql.ref("o.name"), kind: "text" },
 		owner: { by: sql.ref("o.contact_name"), kind: "text" },
 		county: { by: sql.ref("c.name"), kind: "text" },
-		trees: { by: sql.ref("g.bearing_trees"), kind: "int8" },
+		trees: { by: sql.ref("o.all_bearing_trees"), kind: "int8" },
 	} as const;
 	return { keys: [first[sort], id], direction };
 }

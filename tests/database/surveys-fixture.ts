@@ -59,6 +59,7 @@ export async function openSurveysDatabase() {
 	await loadPlaces(owner);
 	return {
 		owner,
+		ownerUrl: database.ownerUrl,
 		iowa: await addPerson(owner, "Iowa's associate", ["19"]),
 		other: await addPerson(owner, "Iowa's other associate", ["19"]),
 		wisconsin: await addPerson(owner, "Wisconsin's associate", ["55"]),
