@@ -1,36 +1,23 @@
 // A draft whose audit failed, and one that nobody else approved, go out by no address, no operation of the API and no job,
 // whoever asks and whatever is sent; the very same calls publish one that may go out.
-import { readFileSync } from "node:fs";
-import { join } from "node:path";
 import type { JobHelpers } from "graphile-worker";
 import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
+import { type KeyScope, keyScopes, makeApiKey } from "#app/auth/api-keys.server.ts";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
-import type { Associate } from "#app/auth/viewer.ts";
+import type { Associate, Researcher } from "#app/auth/viewer.ts";
 import { createPersonalLink } from "#app/collect/personal-link.server.ts";
-import { closeSurvey } from "#app/collect/survey-opening.server.ts";
-import { computeReleaseDraft } from "#app/jobs/compute-release-draft.server.ts";
-import { networkRules } from "#app/jobs/network-rules.ts";
 import { tasks } from "#app/jobs/tasks.server.ts";
 import { operations } from "#app/publish/api/operations.ts";
-import { createDraft } from "#app/release/drafts.server.ts";
-import { addAnsweredSurvey } from "#tests/database/answered-survey-fixture.ts";
 import { addSurvey } from "#tests/database/answering-fixture.ts";
-import {
-	addOperation,
-	addPerson,
-	asDesk,
-	connectOwner,
-	loadPlaces,
-	useDatabase,
-} from "#tests/database/surveys-fixture.ts";
-import { type Address, filled, listAddresses, paramsOf } from "#tests/helpers/addresses.ts";
+import { addOperation, addPerson, connectOwner, loadPlaces, useDatabase } from "#tests/database/surveys-fixture.ts";
+import { type Address, filled } from "#tests/helpers/addresses.ts";
 import { httpVisitor } from "#tests/helpers/http-visitor.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
+import { aboutDrafts, acting, decidedOn, formsFor, idsOf } from "./gate/calls.ts";
+import { addTarget, putBack, released, releases, type Target } from "./gate/targets.ts";
 
 type Visitor = ReturnType<typeof httpVisitor>;
-/** What a draft is set to before each call, so that what one call made of it does not hide what the next could do. */
-type Target = { draftId: string; surveyId: string; status: "audit_failed" | "audited" };
 
 const subjects = { coordinator: "demo-marit-osgood", associate: "demo-del-fenwick", researcher: "demo-priya-halloran" };
 /** Who may approve comes last: they alone publish what may go out. */
@@ -64,11 +51,11 @@ beforeAll(async () => {
 		associate: desk,
 		coordinator,
 	};
-	blocked = await addTarget(associate, "audit_failed");
+	blocked = await addTarget(owner, associate, "audit_failed");
 	// The coordinator's own: there is nobody else who could approve it.
-	unapproved = await addTarget({ ...associate, personId }, "audited");
-	good = await addTarget(associate, "audited");
-	due = await addTarget(associate, "audited");
+	unapproved = await addTarget(owner, { ...associate, personId }, "audited");
+	good = await addTarget(owner, associate, "audited");
+	due = await addTarget(owner, associate, "audited");
 	await owner.query(
 		`update collect.release_draft set status = 'scheduled', decided_by = $2, decided_at = now(), publish_at = now()
 		where release_draft_id = $1`,
@@ -112,84 +99,20 @@ async function openLink(associate: Associate): Promise<Visitor> {
 	return visitor;
 }
 
-/** A draft with all its cells, that only its status keeps from going out. */
-async function addTarget(drafter: Associate, status: Target["status"]): Promise<Target> {
-	const surveyId = await addAnsweredSurvey(owner, drafter);
-	// A season each: a draft that another survey's release has overtaken would be refused for that alone.
-	await owner.query(
-		"update collect.survey set season = (select max(season) + 1 from collect.survey) where survey_id = $1",
-		[surveyId],
-	);
-	const made = await asDesk(drafter, async (trx) => {
-		await closeSurvey(trx, drafter, surveyId);
-		return createDraft(trx, drafter, surveyId, networkRules);
-	});
-	if (made.outcome !== "drafted") throw new Error(made.outcome);
-	await computeReleaseDraft({ releaseDraftId: made.releaseDraftId });
-	const target = { draftId: made.releaseDraftId, surveyId, status };
-	await owner.query(
-		"update collect.release_draft set audit = jsonb_set(audit, '{passed}', $2), status = $3 where release_draft_id = $1",
-		[target.draftId, status === "audited", status],
-	);
-	return target;
-}
-
-/** Drafts that an associate has begun anew are gone again too. */
-async function putBack({ draftId, surveyId, status }: Target): Promise<void> {
-	await owner.query("delete from collect.release_draft where survey_id = $1 and release_draft_id <> $2", [
-		surveyId,
-		draftId,
-	]);
-	await owner.query(
-		`update collect.release_draft set status = $2, decided_by = null, decided_at = null, decision_note = null, publish_at = null
-		where release_draft_id = $1 and status not in ('approved', $2)`,
-		[draftId, status],
+/** A researcher's programs: one for every choice of what a key is good for. */
+async function keyHolders() {
+	const { rows } = await owner.query("select person_id from auth.person where subject = $1", [subjects.researcher]);
+	const person = { personId: rows[0].person_id, displayName: "A researcher", email: null, language: null };
+	const researcher: Researcher = { ...person, role: "researcher" };
+	const choices: KeyScope[][] = [...keyScopes.map((scope) => [scope]), [...keyScopes]];
+	return Promise.all(
+		choices.map(async (scopes) => {
+			const made = await makeApiKey(researcher, { label: scopes.join(), scopes, days: "30" });
+			if (made === "too_many_keys") throw new Error(made);
+			return { scopes, visitor: httpVisitor(stack.baseUrl, "en", { authorization: `Bearer ${made.key}` }) };
+		}),
 	);
 }
-
-/** Everything that readers may come to, as one text. */
-async function released(): Promise<string> {
-	const { rows: tables } = await owner.query<{ name: string }>(
-		"select schemaname || '.' || tablename as name from pg_tables where schemaname in ('release', 'publish') order by 1",
-	);
-	const text: string[] = [];
-	for (const { name } of tables) {
-		const { rows } = await owner.query<{ row: string }>(`select t::text as row from ${name} t order by 1`);
-		text.push(...rows.map(({ row }) => `${name} ${row}`));
-	}
-	return text.join("\n");
-}
-async function releases(): Promise<string[]> {
-	const { rows } = await owner.query("select release_id from release.release");
-	return rows.map(({ release_id }) => release_id as string);
-}
-
-const anything = {
-	reason: "A reason.",
-	reasonEn: "A reason.",
-	reasonEs: "Una razón.",
-	note: "A note.",
-	publishOn: new Date(Date.now() + 86_400_000).toISOString().slice(0, 10),
-	publishAt: "09:00",
-};
-
-/** Forms for an address: one that asks for publication, and one for each word by which its own schemas tell steps apart. */
-function formsFor({ file }: Address): Record<string, string>[] {
-	const source = readFileSync(file, "utf8");
-	const schemas = [...source.matchAll(/"#(app\/[\w/-]+(?:\.schema|\.server)?\.ts)"/g)].map(([, path]) =>
-		readFileSync(join(import.meta.dirname, "../..", path!), "utf8"),
-	);
-	const text = [source, ...schemas].join("\n");
-	const steps = [...text.matchAll(/\b(step|decision|intent|act|do|reply): z\.(?:literal|enum)\(([^)]*)\)/g)].flatMap(
-		([, name, words]) => [...words!.matchAll(/"(\w+)"/g)].map(([, word]) => [name!, word!] as const),
-	);
-	const told = new Map(steps.map(([name, word]) => [`${name} ${word}`, { ...anything, [name]: word }]));
-	const asked = { ...anything, decision: "publish", intent: "publish", step: "publish", act: "publish" };
-	return [asked, ...told.values()];
-}
-
-/** The pages on which drafts are made and decided, to which everybody posts everything. */
-const decidedOn = new Set(["desk/surveys/:surveyId/release", "network/releases/:draftId"]);
 
 /**
  * Posts everything to an address as one person, in the order of the schemas, and as somebody whom the desk and the network
@@ -205,34 +128,23 @@ async function postAll(role: Role, address: Address, target: Target): Promise<bo
 		const { status } = await visitors[role].post(way, form);
 		if (status >= 400) continue;
 		taken = true;
-		if (target !== good) await putBack(target);
+		if (target !== good) await putBack(owner, target);
 	}
 	return taken;
 }
 
-const idsOf = ({ draftId, surveyId }: Target): Record<string, string> => ({
-	...Object.fromEntries(["release", "reportId", "roleGrantId", "operationId", "formId"].map((name) => [name, draftId])),
-	draftId,
-	surveyId,
-});
-/** Signing out comes last, so that whoever asks is who they are. */
-const acting = async () =>
-	(await listAddresses())
-		.filter(({ acts }) => acts)
-		.toSorted((a, b) => Number(a.path === "sign-out") - Number(b.path === "sign-out"));
-const aboutDrafts = ({ path }: Address) => paramsOf(path).some((name) => ["draftId", "surveyId"].includes(name));
-
 test("the forms are those of the pages: of a draft's decision each, of others what their schemas tell", async () => {
-	const at = (path: string) => acting().then((list) => formsFor(list.find((address) => address.path === path)!));
-	const decisions = (await at("network/releases/:draftId")).flatMap(({ decision }) => decision ?? []);
+	const list = await acting();
+	const at = (path: string) => formsFor(list.find((address) => address.path === path)!);
+	const decisions = at("network/releases/:draftId").flatMap(({ decision }) => decision ?? []);
 	expect(decisions).toEqual(["publish", "publish", "schedule", "unschedule", "reject", "withdraw"]);
-	const steps = (await at("desk/surveys/:surveyId/release")).flatMap(({ step }) => step ?? []);
+	const steps = at("desk/surveys/:surveyId/release").flatMap(({ step }) => step ?? []);
 	expect(steps).toEqual(expect.arrayContaining(["draft", "cancel", "revise"]));
-	expect((await acting()).length).toBeGreaterThan(60);
+	expect(list.length).toBeGreaterThan(60);
 });
 
 test("no address publishes a draft that is blocked or not approved, whoever posts whatever to it", async () => {
-	const before = await released();
+	const before = await released(owner);
 	const list = await acting();
 	const opened = new Set<Role>();
 	const tryAll = async (role: Role) => {
@@ -246,31 +158,53 @@ test("no address publishes a draft that is blocked or not approved, whoever post
 	await Promise.all(roles.slice(0, 3).map(tryAll));
 	await tryAll("associate");
 	await tryAll("coordinator");
-	expect(await releases()).toEqual([]);
-	expect(await released()).toBe(before);
+	expect(await releases(owner)).toEqual([]);
+	expect(await released(owner)).toBe(before);
 	expect(opened.size).toBe(roles.length);
 });
 
-/** Asks every operation of the API for what nobody published. */
-async function tryApi(role: Role, methods: string[]): Promise<void> {
-	for (const { path } of Object.values(operations)) {
+const methods = ["GET", "POST", "PUT", "PATCH", "DELETE"];
+
+/** Asks every operation of the API for what nobody published. @param scopes of the key that is sent, if one is */
+async function tryApi(visitor: Visitor, scopes: readonly KeyScope[] = keyScopes): Promise<void> {
+	for (const { path, scope } of Object.values(operations)) {
 		const open = !path.includes("{release}");
 		for (const { draftId } of open ? [blocked] : [blocked, unapproved]) {
 			const address = `/api/v1${path.replace("{release}", draftId).replace("{file}", "release.csv")}`;
 			for (const method of methods) {
-				const { status } = await visitors[role].send(address, { method, ...(method !== "GET" && { body: "{}" }) });
-				expect(status < 400, `${method} ${address}`).toBe(open && method === "GET");
+				const { status } = await visitor.send(address, { method, ...(method !== "GET" && { body: "{}" }) });
+				expect(status < 400, `${method} ${address}`).toBe(open && method === "GET" && scopes.includes(scope));
 			}
 		}
 	}
 }
 
-test("no operation of the API does either, by whichever method", async () => {
-	const before = await released();
-	await tryApi("anyone", ["GET", "POST", "PUT", "PATCH", "DELETE"]);
+test("no operation of the API does either, by whichever method, session and key", async () => {
+	const before = await released(owner);
 	// Sessions are nothing to the API; whether they are is what is tried.
-	for (const role of roles.slice(1)) await tryApi(role, ["GET", "POST"]);
-	expect(await released()).toBe(before);
+	for (const role of roles) await tryApi(visitors[role]);
+	for (const { visitor, scopes } of await keyHolders()) await tryApi(visitor, scopes);
+	expect(await released(owner)).toBe(before);
+});
+
+test("the pages on which drafts are decided do neither, for a key or by another method", async () => {
+	const before = await released(owner);
+	const askedBy = [...roles.map((role) => visitors[role]), ...(await keyHolders()).map(({ visitor }) => visitor)];
+	const pages = (await acting()).filter(({ path }) => decidedOn.has(path));
+	expect(pages).toHaveLength(decidedOn.size);
+	for (const visitor of askedBy) {
+		for (const page of pages) {
+			for (const target of [blocked, unapproved]) {
+				for (const method of methods.slice(1)) {
+					const body = new URLSearchParams(formsFor(page)[0]!);
+					const { status } = await visitor.send(`${filled(page.path, idsOf(target))}.data`, { method, body });
+					if (status < 400) await putBack(owner, target);
+				}
+			}
+		}
+	}
+	expect(await releases(owner)).toEqual([]);
+	expect(await released(owner)).toBe(before);
 });
 
 /** Runs a job as its queue would, about this draft and its survey. */
@@ -295,29 +229,29 @@ async function run(name: keyof typeof tasks, { draftId, surveyId }: Target): Pro
 }
 
 test("no job does either, and the one that publishes does so with what was approved and is due", async () => {
-	const before = await released();
+	const before = await released(owner);
 	for (const target of [blocked, unapproved]) {
 		for (const name of Object.keys(tasks) as (keyof typeof tasks)[]) {
-			await putBack(target);
+			await putBack(owner, target);
 			await run(name, target);
-			expect(await releases(), name).toEqual([]);
+			expect(await releases(owner), name).toEqual([]);
 		}
 	}
-	expect(await released()).toBe(before);
+	expect(await released(owner)).toBe(before);
 	await run("publish_release", due);
-	expect(await releases()).toEqual([due.draftId]);
+	expect(await releases(owner)).toEqual([due.draftId]);
 });
 
 test("the same calls publish a draft that may go out, for the coordinator and nobody else", async () => {
 	const list = (await acting()).filter(aboutDrafts);
 	for (const role of roles) {
-		expect(await releases(), role).not.toContain(good.draftId);
-		await putBack(good);
+		expect(await releases(owner), role).not.toContain(good.draftId);
+		await putBack(owner, good);
 		for (const address of list) {
 			// What an associate drafts anew takes the place of this one: that is tried above.
 			if (role === "associate" && address.path.startsWith("desk/surveys/:surveyId")) continue;
 			await postAll(role, address, good);
 		}
 	}
-	expect(await releases()).toContain(good.draftId);
+	expect(await releases(owner)).toContain(good.draftId);
 });
