@@ -11,6 +11,7 @@ import { type ShellData, useDemo, useShellData } from "#app/components/shell-dat
 import { Shell } from "#app/components/shell.tsx";
 import { getInstance, getLanguage, i18nextMiddleware } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
+import { pageMethods } from "#app/lib/page-methods.server.ts";
 import { securityHeaders } from "#app/lib/security-headers.server.ts";
 
 export const middleware: Route.MiddlewareFunction[] = [
@@ -21,6 +22,7 @@ export const middleware: Route.MiddlewareFunction[] = [
 		Object.assign(getInstance(context).options, { demo: env().DEMO });
 		return next();
 	},
+	...pageMethods,
 	surveyInHandMiddleware,
 	sessionMiddleware,
 	visitorMiddleware,

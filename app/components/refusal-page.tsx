@@ -27,7 +27,7 @@ export function readError(error: unknown): { code: ErrorCode; role?: string } {
 		400: "form_not_understood",
 		401: "sign_in_needed",
 		404: "page_not_found",
-		405: "form_not_understood",
+		405: "method_not_allowed",
 		413: "too_much_text",
 		429: "too_many_tries",
 		503: "service_away",

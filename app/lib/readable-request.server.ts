@@ -2,19 +2,30 @@ import { subscribe } from "node:diagnostics_channel";
 import type { IncomingMessage } from "node:http";
 
 const methods = new Set(["GET", "HEAD", "OPTIONS", "POST", "PUT", "PATCH", "DELETE"]);
+const formType = "application/x-www-form-urlencoded";
+const isForm = /^(application\/x-www-form-urlencoded|multipart\/form-data)\b/i;
 
 /**
- * Two kinds of request would be refused before any code of ours sees them, as a page of the server's own: an address with a
- * percent sign that begins no character, and under the API's address a method that no web request can have. Node tells of
- * a request before it is handled, so both are made into one that can be read, and refused in the API's own words.
+ * Three kinds of request would be refused before any code of ours sees them, as a page of the server's own or as a fault: an
+ * address with a percent sign that begins no character; a method that no web request can have, or that only programs ask
+ * the API with; and a form that does not say that it is one. Node tells of a request before it is handled, so each is made
+ * into one that can be read, and is refused in the product's own words.
  */
 export function makeRequestsReadable(): void {
 	subscribe("http.server.request.start", (message) => {
 		const { request } = message as { request: IncomingMessage };
 		request.url = readableAddress(request.url ?? "/");
-		// The API only reads: it refuses this one as it refuses all that would change something.
-		if (/^\/api(\/|$)/.test(request.url) && !methods.has(request.method ?? "")) request.method = "PUT";
+		const forApi = isForApi(request.url);
+		// Nothing takes this one: the API only reads, and for pages see `pageMethods`.
+		if (!methods.has(request.method ?? "") || (request.method === "OPTIONS" && !forApi)) request.method = "PUT";
+		// Fields are then missing, which the page can say.
+		if (!forApi && !isForm.test(request.headers["content-type"] ?? "")) request.headers["content-type"] = formType;
 	});
+}
+
+/** Whether an address is one for programs, which are refused in the API's way. */
+export function isForApi(address: string): boolean {
+	return address.startsWith("/api/");
 }
 
 /** An address whose path cannot be read, with its percent signs taken as they stand; any other as it is. */

@@ -12,7 +12,7 @@ test.each([
 	expect(readableAddress(address)).toBe(read);
 });
 
-test("a server is given what it can read, and a page's method as it came", async () => {
+test("a server is given what it can read, with a method that it knows", async () => {
 	makeRequestsReadable();
 	const server = createServer((asked, answer) => answer.end(`${asked.method} ${asked.url}`)).listen(0, "127.0.0.1");
 	await new Promise((resolve) => server.once("listening", resolve));
@@ -26,7 +26,8 @@ test("a server is given what it can read, and a page's method as it came", async
 		});
 	expect(await seen("TRACE", "/api/v1/releases")).toBe("PUT /api/v1/releases");
 	expect(await seen("GET", "/api/v1/releases/%zz")).toBe("GET /api/v1/releases/%25zz");
-	expect(await seen("TRACE", "/apiary")).toBe("TRACE /apiary");
+	expect(await seen("OPTIONS", "/api/v1/releases")).toBe("OPTIONS /api/v1/releases");
+	for (const method of ["TRACE", "PROPFIND", "OPTIONS"]) expect(await seen(method, "/apiary")).toBe("PUT /apiary");
 	expect(await seen("POST", "/api/v1/releases")).toBe("POST /api/v1/releases");
 	await new Promise((resolve) => server.close(resolve));
 });

@@ -25,6 +25,7 @@ const statusOf = {
 	too_much_text: 413,
 	too_many_tries: 429,
 	form_not_understood: 400,
+	method_not_allowed: 405,
 	service_away: 503,
 } as const;
 export type RefusalCode = keyof typeof statusOf;

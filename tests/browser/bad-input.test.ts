@@ -1,3 +1,5 @@
+import { request } from "node:http";
+import { text as streamText } from "node:stream/consumers";
 import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
@@ -267,4 +269,24 @@ test("a second tap on the same answers gives the same receipt, and one mail", as
 	);
 	expect(await count(owner, "collect.response where survey_id = $1", [surveyId])).toBe(1);
 	expect(await count(owner, "collect.mailing where survey_id = $1 and kind = 'receipt'", [surveyId])).toBe(1);
+});
+
+test("a method that no page takes is refused in words with those it does, and a form that is none lacks its fields", async () => {
+	const { hostname, port } = new URL(stack.baseUrl);
+	const ask = (method: string, path: string) =>
+		new Promise<{ line: string; text: string }>((resolve, reject) => {
+			// Node's fetch refuses to send some of these.
+			const sent = request({ hostname, port, method, path, agent: false }, async (answer) =>
+				resolve({ line: `${answer.statusCode} ${answer.headers.allow}`, text: await streamText(answer) }),
+			);
+			sent.on("error", reject).end();
+		});
+	for (const method of ["TRACE", "PROPFIND", "OPTIONS", "PATCH"])
+		for (const path of ["/data", "/sign-out", "/nowhere", "/map/counties.json"]) {
+			const { line, text } = await ask(method, path);
+			expect(`${method} ${path} ${line}`).toBe(`${method} ${path} 405 GET, HEAD, POST`);
+			if (path === "/data") expect(text).toContain("This page is not asked for in that way");
+		}
+	expect((await ask("POST", "/data")).line).toBe("405 GET, HEAD");
+	expect((await ask("POST", "/subscribe")).line).toBe("400 undefined");
 });
