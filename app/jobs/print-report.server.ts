@@ -22,11 +22,17 @@ export async function printReport({ reportId, language }: { reportId: string; la
 	if (!report) return;
 	const goneBefore = await scopedTransaction({ kind: "none" }, (trx) => countTakenAway(trx, reportId));
 	const browser = await findBrowser();
-	const made = browser
-		? await print(browser, `${env().BASE_URL}/reports/${report.slug}?version=${report.version}`, language)
-		: ({ problem: "no_browser" } as const);
+	const address = `${env().BASE_URL}/reports/${report.slug}?version=${report.version}`;
+	if (browser) await requirePage(address);
+	const made = browser ? await print(browser, address, language) : ({ problem: "no_browser" } as const);
 	await scopedTransaction({ kind: "none" }, (trx) => keepReportFile(trx, reportId, language, made, goneBefore));
 	if ("problem" in made) log.warn({ reportId, language, problem: made.problem }, "no PDF of a report");
+}
+
+/** A browser prints its own words about a server that does not answer as gladly as a report. @throws so that it is tried again. */
+async function requirePage(address: string): Promise<void> {
+	const answer = await fetch(address, { method: "HEAD", signal: AbortSignal.timeout(mostSeconds * 1000) });
+	if (!answer.ok) throw new Error(`${address} answered ${answer.status}`);
 }
 
 /** Where Debian's packages put it, unless the setting names another. */

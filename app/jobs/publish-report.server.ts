@@ -1,11 +1,12 @@
 import { logEvent } from "#app/auth/event-log.server.ts";
 import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
-import { languages } from "#app/i18n/language.ts";
+import { type Language, languages } from "#app/i18n/language.ts";
 import { log } from "#app/lib/log.server.ts";
 import { publishScheduled } from "#app/publish/drafting/report-approval.server.ts";
 import { takePhotoAway } from "#app/publish/drafting/report-photos.server.ts";
 import type { PhotoReason } from "#app/publish/report-photo.ts";
+import { listReportsWithoutFile } from "#app/publish/reports.server.ts";
 import { queueJob } from "./queue.server.ts";
 
 /** One job a report: a new minute takes the place of the one before. */
@@ -21,9 +22,20 @@ export async function queueAfterPublication(trx: Trx, reportId: string): Promise
 const mailDelaySeconds = 30;
 
 async function queuePrinting(trx: Trx, reportId: string): Promise<void> {
-	for (const language of languages) {
-		await queueJob(trx, "print_report", { reportId, language }, { jobKey: `print_report:${reportId}:${language}` });
-	}
+	for (const language of languages) await queuePrint(trx, reportId, language);
+}
+
+function queuePrint(trx: Trx, reportId: string, language: Language): Promise<void> {
+	return queueJob(trx, "print_report", { reportId, language }, { jobKey: `print_report:${reportId}:${language}` });
+}
+
+/** What the worker does when it starts: reports that were seeded, or published where no browser was installed, get their PDFs. */
+export async function queueMissingPdfs(): Promise<void> {
+	await scopedTransaction({ kind: "none" }, async (trx) => {
+		for (const language of languages) {
+			for (const reportId of await listReportsWithoutFile(language)) await queuePrint(trx, reportId, language);
+		}
+	});
 }
 
 /** Takes a photo out of a report, and has what was published with it printed anew. */

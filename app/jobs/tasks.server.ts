@@ -30,6 +30,7 @@ const Change = z.object({ releaseId: z.uuid(), change: z.enum(releaseChanges) })
 
 /** What a worker does when it starts. */
 export { queueMissingFiles } from "./make-release-files.server.ts";
+export { queueMissingPdfs } from "./publish-report.server.ts";
 export { checkUnchecked } from "./check-answers.server.ts";
 export { setReminderAlarms } from "./send-reminders.server.ts";
 

@@ -1,7 +1,14 @@
 import { Logger, run } from "graphile-worker";
 import { env } from "#app/lib/env.server.ts";
 import { log } from "#app/lib/log.server.ts";
-import { checkUnchecked, crontab, queueMissingFiles, setReminderAlarms, tasks } from "./tasks.server.ts";
+import {
+	checkUnchecked,
+	crontab,
+	queueMissingFiles,
+	queueMissingPdfs,
+	setReminderAlarms,
+	tasks,
+} from "./tasks.server.ts";
 
 // The worker is a process of its own, so that a slow audit never holds up a page. Any number may run beside each other.
 const quiet = new Logger((scope) => (level, message) => {
@@ -19,6 +26,7 @@ const runner = await run({
 });
 await setReminderAlarms();
 await queueMissingFiles();
+await queueMissingPdfs();
 await checkUnchecked();
 log.info("worker ready");
 process.on("disconnect", () => void runner.stop());

@@ -1,5 +1,14 @@
 import { expect, test } from "vitest";
-import { missingWords, partsOf, referencesOf, referenceText, slugOf, tooLongWords, typedFigures } from "./report.ts";
+import {
+	missingWords,
+	partsOf,
+	referencesOf,
+	referenceText,
+	slugOf,
+	tooLongWords,
+	typedFigures,
+	typedIn,
+} from "./report.ts";
 
 const words = { en: "Title", es: "Título" };
 
@@ -57,4 +66,12 @@ test("two megabytes of text are named as too long", () => {
 test("an address is made of a title's plain letters", () => {
 	expect(slugOf("Crop report 2025: Año difícil!")).toBe("crop-report-2025-ano-dificil");
 	expect(slugOf("¿¡…")).toBe("report");
+});
+
+test("numbers typed anywhere in a report are told once each, in a correction's words too", () => {
+	const words = (en: string) => ({ en, es: "Nada" });
+	const blocks = [{ id: "b1", type: "text" as const, text: words("38% in 2025, and 38% again") }];
+	const content = { title: words("IA-3"), summary: words("[[crop_loss|apple|network]]"), blocks };
+	expect(typedIn(content, null)).toEqual(["38%"]);
+	expect(typedIn(content, words("12 counties"))).toEqual(["12", "38%"]);
 });

@@ -186,6 +186,11 @@ export function missingWords(
 	return missing.map((field) => ({ field, code: "empty" }));
 }
 
+/** Every number that is typed in a report, each once: whoever approves it is to see them. */
+export function typedIn(content: ReportContent, correction: DraftWords | null): string[] {
+	return [...new Set(textsOf(content, correction).flatMap(([, text]) => typedFigures(text)))];
+}
+
 const longestText = 8_000;
 
 /** Texts longer than a report's page can take; they come back to the editor whole, to be shortened there. */

@@ -69,6 +69,20 @@ export async function listReportFiles(reportId: string, db: Reader = reader()): 
 	return rows.map(({ language }) => language);
 }
 
+/** Published reports, every version of them, that have no PDF in a language. */
+export async function listReportsWithoutFile(language: string, db: Reader = reader()): Promise<string[]> {
+	const rows = await db
+		.selectFrom("publish.report as r")
+		.leftJoin("publish.report_file as f", (join) =>
+			join.onRef("f.report_id", "=", "r.report_id").on("f.language", "=", language),
+		)
+		.select("r.report_id")
+		.where("r.state", "=", "published")
+		.where("f.bytes", "is", null)
+		.execute();
+	return rows.map(({ report_id }) => report_id);
+}
+
 export async function findReportFile(
 	reportId: string,
 	language: string,

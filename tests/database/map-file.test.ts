@@ -120,7 +120,7 @@ test("map, drawing, table and file tell the same of every county", async () => {
 	expect([drawn.length, table.size, rows.size]).toEqual([99, 99, 99]);
 	const looks = new Set(cells.map(({ look }) => look));
 	expect(looks).toEqual(new Set(["number", "rough", "withheld", "no_growers", "no_figure"]));
-	const said = { rough: "too rough to publish", withheld: "withheld", no_growers: "no growers of this crop", no_figure: "Not asked" }; // prettier-ignore
+	const said = { rough: "too rough to publish", withheld: "withheld", no_growers: "no growers", no_figure: "Not asked" }; // prettier-ignore
 	const status = { number: "A", rough: "N", withheld: "Q", no_growers: "M", no_figure: "O" };
 	for (const cell of cells) {
 		const { areaKey, areaName, look, value, lower, upper } = cell;

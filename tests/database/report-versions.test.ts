@@ -2,7 +2,7 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { decideReport } from "#app/jobs/decide-report.server.ts";
-import { publishReportAtItsMinute } from "#app/jobs/publish-report.server.ts";
+import { publishReportAtItsMinute, queueMissingPdfs } from "#app/jobs/publish-report.server.ts";
 import { addComment, listComments, resolveComment } from "#app/publish/drafting/report-comments.server.ts";
 import { startCorrection } from "#app/publish/drafting/report-correction.server.ts";
 import { listEdits } from "#app/publish/drafting/report-edits.server.ts";
@@ -103,6 +103,18 @@ test("an approved report is nobody's to read before its minute, and everybody's 
 	expect(queued.rows.map(({ task }) => task)).toEqual(
 		expect.arrayContaining(["mail_report", "print_report", "print_report"]),
 	);
+});
+
+test("a worker that starts has the PDFs printed that a published report lacks, and no others", async () => {
+	const { reportId } = await publish("Without a PDF");
+	const draftId = await handIn("Not out");
+	await app.query("select graphile_worker.remove_job(key) from graphile_worker.jobs where key like 'print_report:%'");
+	await desk((trx) => keepReportFile(trx, reportId, "es", { bytes: Buffer.from("%PDF-") }, 0));
+	await desk((trx) => keepReportFile(trx, reportId, "en", { problem: "no_browser" }, 0));
+	await queueMissingPdfs();
+	const { rows } = await app.query("select key from graphile_worker.jobs where key like 'print_report:%'");
+	const keys = rows.map(({ key }) => key as string).filter((key) => key.includes(reportId) || key.includes(draftId));
+	expect(keys).toEqual([`print_report:${reportId}:en`]);
 });
 
 test("an approval is taken back until its minute; the job that comes then publishes nothing", async () => {

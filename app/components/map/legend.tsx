@@ -17,10 +17,10 @@ export type LegendProps = Counted & {
 };
 
 /** What each colour and sign stands for, with how many areas have it. */
-export function Legend({ title, cells, classes, notAsked, hue, measure, beside }: LegendProps) {
+export function Legend({ title, cells, classes, unasked, ofDistricts, hue, measure, beside }: LegendProps) {
 	const { t } = useTranslation("public");
 	const id = useId();
-	const entries = useLegendEntries([{ cells, notAsked }, ...(beside ? [beside] : [])], classes, measure);
+	const entries = useLegendEntries([{ cells, unasked, ofDistricts }, ...(beside ? [beside] : [])], classes, measure);
 	return (
 		<div className="text-sm">
 			<p className="font-bold">{title}</p>
@@ -52,7 +52,7 @@ export function LegendSign({ sign, hue, classCount, id }: SignProps) {
 	const square = { x: 1, y: 1, width: 26, height: 16 };
 	if (typeof sign === "number") return <rect {...square} className={`map-county ${fillOf(hue, sign, classCount)}`} />;
 	if (sign === "no_growers") return <rect {...square} className="map-county map-blank" />;
-	if (sign === "no_figure") return <rect {...square} className="map-county map-unasked" />;
+	if (sign === "no_figure" || sign === "no_district") return <rect {...square} className="map-county map-unasked" />;
 	return (
 		<>
 			<MapPatterns id={id} />

@@ -150,9 +150,10 @@ function PictureLegend({ legend: { names, classes, hue }, entries, y, width }: P
 						<text x={pad + column * columnWidth + 38} y={line + 15}>
 							{words}
 						</text>
-						{countsAt(column).map((x, of) => (
-							<text key={x} x={x} y={line + 15} textAnchor="end" className="quiet">
-								{format.number(counts[of] ?? 0)}
+						{counts.map((count, of) => (
+							// oxlint-disable-next-line react/no-array-index-key -- the columns stand where they stand
+							<text key={of} x={countsAt(column)[of]} y={line + 15} textAnchor="end" className="quiet">
+								{format.number(count)}
 							</text>
 						))}
 					</g>

@@ -65,28 +65,27 @@ export function mapStyle(geometry: GeometryAnswer, colors: MapColors): StyleSpec
 
 export type Painted = { fill: unknown; withheld: number[]; rough: number[] };
 
-/** Colours by county number. A withheld county has the paper's colour, as every county without a number. */
+/**
+ * Colours by county number. A withheld county has the paper's colour, as every other that was asked and has no number; all the
+ * rest are grey, whether the figures name them or not.
+ */
 export function paintedBy({ cells, classes, areaOfCounty }: FiguresAnswer, colors: MapColors): Painted {
 	const byArea = new Map(cells.map((cell) => [cell.areaKey, cell]));
 	const groups = new Map<string, number[]>();
 	for (const [fips, areaKey] of Object.entries(areaOfCounty)) {
 		const cell = byArea.get(areaKey ?? "");
-		const unasked = !cell || cell.look === "no_figure";
-		const group = unasked
-			? "unasked"
-			: cell.look === "number" && cell.classIndex !== null
-				? `${cell.classIndex}`
-				: cell.look;
+		if (!cell || cell.look === "no_figure") continue;
+		const group = cell.look === "number" && cell.classIndex !== null ? `${cell.classIndex}` : cell.look;
 		groups.set(group, [...(groups.get(group) ?? []), Number(fips)]);
 	}
 	const branches = classes.flatMap((_, index) => {
 		const ids = groups.get(`${index}`);
 		return ids ? [ids, colors.palette[paletteStep(index, classes.length)] ?? colors.paper] : [];
 	});
-	const unasked = groups.get("unasked");
-	if (unasked) branches.push(unasked, colors.unasked);
+	const blank = (["withheld", "rough", "no_growers"] as const).flatMap((look) => groups.get(look) ?? []);
+	if (blank.length > 0) branches.push(blank, colors.paper);
 	return {
-		fill: branches.length > 0 ? ["match", ["id"], ...branches, colors.paper] : colors.paper,
+		fill: branches.length > 0 ? ["match", ["id"], ...branches, colors.unasked] : colors.unasked,
 		withheld: groups.get("withheld") ?? [],
 		rough: groups.get("rough") ?? [],
 	};

@@ -23,7 +23,7 @@ export function useMapFinding() {
 			const finding = ofSeasons({ chart: "seasons", measure, cropKey, area: whole.cell, rows: wholes });
 			return t("map.finding.placed", { area, finding });
 		}
-		return t([`map.finding.${measure.key}`, "map.finding.other"], {
+		return t([`map.finding.${measure.key}_${cropKey}`, `map.finding.${measure.key}`, "map.finding.other"], {
 			area,
 			season: whole.season,
 			measure: wordsIn(measure.label, i18n.language),

@@ -7,6 +7,7 @@ import { useAreaName } from "#app/components/map/area-name.ts";
 import { bandText } from "#app/components/map/cell-words.ts";
 import { Legend } from "#app/components/map/legend.tsx";
 import { type DrawnPicture, StaticMap } from "#app/components/map/static-map.tsx";
+import { countUnasked } from "#app/components/map/unasked.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { CropTable } from "./crop-table.tsx";
@@ -128,7 +129,7 @@ function MapBlock({ block, season, picture }: Of<"map"> & { picture: DrawnPictur
 					title={title}
 					cells={cells}
 					classes={classes}
-					notAsked={Object.keys(areaOfCounty).length - cells.length}
+					unasked={countUnasked({ picture, areaOfCounty, cells })}
 					hue={measure.hue}
 					measure={measure}
 				/>

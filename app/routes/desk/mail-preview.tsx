@@ -69,7 +69,7 @@ export default function MailPreview({ loaderData, actionData, params }: Route.Co
 					className="mt-4 h-[44rem] w-full max-w-2xl border border-line"
 				/>
 				<details className="mt-4">
-					<summary className="min-h-11 cursor-pointer py-2 font-bold">{t("mailing.asText")}</summary>
+					<summary className="min-h-11 cursor-pointer py-2 font-bold text-damson">{t("mailing.asText")}</summary>
 					<pre lang={language} className="max-w-2xl border border-rule p-4 text-sm wrap-anywhere whitespace-pre-wrap">
 						{text}
 					</pre>

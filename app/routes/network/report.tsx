@@ -19,6 +19,7 @@ import { findReport, isOwn, needsLook } from "#app/publish/drafting/reports.serv
 import { findReleaseById } from "#app/publish/releases.server.ts";
 import { resolveReport } from "#app/publish/resolved-report.server.ts";
 import { Comments } from "#app/routes/desk/parts/report-comments.tsx";
+import { StillTyped } from "#app/routes/desk/parts/report-notices.tsx";
 import { ReportPreview } from "#app/routes/desk/parts/report-preview.tsx";
 import { takeComment } from "#app/routes/desk/parts/report-steps.server.ts";
 import { PhotosToTakeAway } from "./parts/photos-to-take-away.tsx";
@@ -87,6 +88,7 @@ export default function NetworkReport({ loaderData, actionData }: Route.Componen
 					<Link to={href("/reports/:slug", { slug: report.slug })}>{t("report_editor.seePublished")}</Link>
 				</Notice>
 			)}
+			{state !== "published" && <StillTyped report={report} />}
 			{state === "submitted" && submittedAt && (
 				<p className="mb-4">{t("report_review.submitted", { moment: format.moment(submittedAt) })}</p>
 			)}

@@ -176,7 +176,13 @@ function OneMap({ map, title, chosen, onChoose }: OneMapProps) {
 					onChoose={onChoose}
 				/>
 				<div>
-					<Legend title={title} {...countedOn(map, state)} classes={map.classes} hue={hue} measure={measure} />
+					<Legend
+						title={title}
+						{...countedOn(map, map.picture, state)}
+						classes={map.classes}
+						hue={hue}
+						measure={measure}
+					/>
 					<p className="mt-4 text-sm text-quiet">{t(`map.classes.${way}`)}</p>
 					<p className="mt-4 text-sm text-quiet">{t(`map.counted.${kind}`)}</p>
 					<p className="mt-4 text-sm text-quiet">{t("map.withheldWhy")}</p>

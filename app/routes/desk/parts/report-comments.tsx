@@ -23,8 +23,11 @@ export function Comments({ comments, blocks, open, sent }: CommentsProps) {
 	if (!open && comments.length === 0) return null;
 	const waiting = comments.filter(({ resolvedAt }) => !resolvedAt).length;
 	return (
-		<details className="no-print mb-8 border-y border-rule py-3" open={waiting > 0 || undefined}>
-			<summary className="min-h-11 cursor-pointer py-2 font-bold">
+		<details
+			className="no-print mb-8 border-y border-rule py-3"
+			open={waiting > 0 || Boolean(sent && "problems" in sent) || undefined}
+		>
+			<summary className="min-h-11 cursor-pointer py-2 font-bold text-damson">
 				{waiting > 0 ? t("comments.title", { count: waiting }) : t("comments.none")}
 			</summary>
 			<ul className="list-none">

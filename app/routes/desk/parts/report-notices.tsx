@@ -5,6 +5,20 @@ import { Notice } from "#app/components/notice.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { ReportFile } from "#app/publish/drafting/report-files.server.ts";
 import type { DeskReport } from "#app/publish/drafting/reports.server.ts";
+import { typedIn } from "#app/publish/report.ts";
+
+/** Numbers that do not follow the release, to author and second person until the report is out. */
+export function StillTyped({
+	report: { content, correction },
+}: {
+	report: Pick<DeskReport, "content" | "correction">;
+}) {
+	const { t } = useTranslation("report");
+	const format = useFormat();
+	const found = typedIn(content, correction);
+	if (found.length === 0) return null;
+	return <Notice tone="attention">{t("editor.stillTyped", { count: found.length, found: format.list(found) })}</Notice>;
+}
 
 type ReportNoticesProps = { report: DeskReport; needsLook: boolean; files: ReportFile[] };
 
@@ -27,6 +41,7 @@ export function ReportNotices({ report, needsLook, files }: ReportNoticesProps) 
 				</Notice>
 			)}
 			{state === "submitted" && <Notice tone="info">{t("report_editor.waiting")}</Notice>}
+			{state === "submitted" && <StillTyped report={report} />}
 			{state === "scheduled" && publishAt && (
 				<Notice tone="info">{t("report:schedule.waits", { moment: format.moment(publishAt) })}</Notice>
 			)}

@@ -66,12 +66,12 @@ export function MapPair({
 			<div className="mt-6 grid gap-x-10 gap-y-4 sm:grid-cols-2">
 				<Legend
 					title={t("map.two.legend", { title })}
-					{...countedOn(earlier, shown.state)}
+					{...countedOn(earlier, shown.picture, shown.state)}
 					classes={earlier.classes}
 					hue={later.hue}
 					measure={later.measure}
 					beside={{
-						...countedOn(later, shown.state),
+						...countedOn(later, shown.picture, shown.state),
 						names: [columnName(earlier, later), columnName(later, earlier)],
 					}}
 				/>

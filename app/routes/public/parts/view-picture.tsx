@@ -43,7 +43,7 @@ export function ViewPicture({ shown, state, wholes, picture, baseUrl }: ViewPict
 				sentences: Object.fromEntries(figures.cells.map((cell) => [cell.areaKey, words(areaName(cell), cell)])),
 			}))}
 			legend={{
-				counted: shown.map((figures) => countedOn(figures, state)),
+				counted: shown.map((figures) => countedOn(figures, picture, state)),
 				names: shown.length > 1 ? shown.map((figures, index) => columnName(figures, shown[1 - index]!)) : [],
 				classes,
 				hue,

@@ -24,7 +24,7 @@ export function TableMapView({ map, picture, catalogue }: TableMapProps) {
 				label={t("public:map.alternative", { title })}
 			/>
 			<div>
-				<Legend {...{ title, cells, classes, measure }} notAsked={0} hue={measure.hue} />
+				<Legend {...{ title, cells, classes, measure }} unasked={0} hue={measure.hue} />
 				<p className="mt-4 text-sm text-quiet">{t(`public:map.counted.${kind}`)}</p>
 				<p className="mt-4 text-sm text-quiet">{t("tables.mapPlain")}</p>
 				<p className="mt-4 text-sm">

@@ -86,7 +86,7 @@ function Snippets({ operation, address }: { operation: ToldOperation; address: s
 		snippetOf(language, address, { csv: operation.types.includes("text/csv"), fileName });
 	return (
 		<details className="mt-3">
-			<summary className="min-h-9 cursor-pointer py-1 font-bold">{t("api.page.code")}</summary>
+			<summary className="min-h-9 cursor-pointer py-1 font-bold text-damson">{t("api.page.code")}</summary>
 			{snippetLanguages.map((language) => (
 				<div key={language} className="mt-3">
 					<p className="flex flex-wrap items-center gap-3 font-bold">

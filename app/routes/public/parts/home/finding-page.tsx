@@ -5,6 +5,7 @@ import { ButtonLink } from "#app/components/button.tsx";
 import { Figure } from "#app/components/figure.tsx";
 import { Legend } from "#app/components/map/legend.tsx";
 import { type DrawnPicture, StaticMap } from "#app/components/map/static-map.tsx";
+import { countUnasked } from "#app/components/map/unasked.ts";
 import { Page } from "#app/components/page.tsx";
 import { CropTable } from "#app/components/report/crop-table.tsx";
 import { Section } from "#app/components/section.tsx";
@@ -103,7 +104,7 @@ function HomeMap({ latest: { release, measure, figures, picture } }: { latest: L
 				label={t("map.alternative", { title })}
 			/>
 			<figcaption className="mt-3">
-				<Legend {...shared} title={title} notAsked={0} measure={measure} />
+				<Legend {...shared} title={title} unasked={countUnasked({ ...figures, picture })} measure={measure} />
 				<p className="no-print mt-4">
 					<ButtonLink to={mapAddress(release.number, measure.key, figures.cropKey)} kind="secondary">
 						{t("home.openMap")}
