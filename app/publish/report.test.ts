@@ -68,10 +68,11 @@ test("an address is made of a title's plain letters", () => {
 	expect(slugOf("¿¡…")).toBe("report");
 });
 
+const inEnglish = (en: string) => ({ en, es: "Nada" });
+
 test("numbers typed anywhere in a report are told once each, in a correction's words too", () => {
-	const words = (en: string) => ({ en, es: "Nada" });
-	const blocks = [{ id: "b1", type: "text" as const, text: words("38% in 2025, and 38% again") }];
-	const content = { title: words("IA-3"), summary: words("[[crop_loss|apple|network]]"), blocks };
+	const blocks = [{ id: "b1", type: "text" as const, text: inEnglish("38% in 2025, and 38% again") }];
+	const content = { title: inEnglish("IA-3"), summary: inEnglish("[[crop_loss|apple|network]]"), blocks };
 	expect(typedIn(content, null)).toEqual(["38%"]);
-	expect(typedIn(content, words("12 counties"))).toEqual(["12", "38%"]);
+	expect(typedIn(content, inEnglish("12 counties"))).toEqual(["12", "38%"]);
 });

@@ -44,7 +44,10 @@ export const StaticMap = memo(function StaticMap({ label, selected, framed, ...d
 			viewBox={`0 0 ${picture.width} ${picture.height}`}
 			role="img"
 			aria-labelledby={`${id}-title`}
-			className={classNames("mx-auto block w-full", framed ? "h-full print:h-auto" : "h-auto max-h-[80vh]")}
+			className={classNames(
+				"mx-auto block w-full",
+				framed ? "h-full print:h-auto" : "h-auto max-h-[80vh] print:max-h-[120mm]",
+			)}
 		>
 			<title id={`${id}-title`}>{label}</title>
 			<MapDrawing id={id} {...drawn}>
