@@ -8,6 +8,7 @@ import { CheckField } from "#app/components/check-field.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { FieldFrame, FieldHelp, fieldId, FieldProblem } from "#app/components/field-frame.tsx";
+import { fileButton } from "#app/components/file-button.ts";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
@@ -92,7 +93,7 @@ export default function ReportPhotos({ loaderData: { report, photos }, actionDat
 				</ul>
 			)}
 			{report.state === "draft" ? (
-				<PhotoForm sent={actionData} />
+				<PhotoForm key={photos.length} sent={actionData} />
 			) : (
 				<Notice tone="info">{t("photos.draftOnly")}</Notice>
 			)}
@@ -132,7 +133,7 @@ function PhotoForm({ sent }: { sent: Sent }) {
 					<label htmlFor={fieldId("photo")} className="block font-bold">
 						{labels.photo}
 					</label>
-					<FieldHelp name="photo">{t(sent ? "photos.fileAgain" : "photos.fileHelp")}</FieldHelp>
+					<FieldHelp name="photo">{t(sent && !photo ? "photos.fileAgain" : "photos.fileHelp")}</FieldHelp>
 					<FieldProblem name="photo" label={labels.photo!} problem={photo} />
 					<input
 						id={fieldId("photo")}
@@ -141,7 +142,7 @@ function PhotoForm({ sent }: { sent: Sent }) {
 						accept="image/*"
 						aria-describedby={photo ? "help-photo problem-photo" : "help-photo"}
 						aria-invalid={photo ? true : undefined}
-						className="mt-2 block min-h-11 max-w-full"
+						className={`mt-2 block min-h-11 max-w-full ${fileButton}`}
 					/>
 				</FieldFrame>
 				<TextField {...text("consentOf")} help={t("photos.consentOfHelp")} size="full" />

@@ -35,7 +35,7 @@ export function Comments({ comments, blocks, open, sent }: CommentsProps) {
 					<Comment key={comment.commentId} comment={comment} blocks={blocks} />
 				))}
 			</ul>
-			{open && <CommentForm blocks={blocks} sent={sent} />}
+			{open && <CommentForm key={comments.length} blocks={blocks} sent={sent} />}
 		</details>
 	);
 }

@@ -4,6 +4,7 @@ import { mostPhotoBytes, mostPhotos } from "#app/collect/photo.ts";
 import { Button, buttonClasses } from "#app/components/button.tsx";
 import { classes } from "#app/components/classes.ts";
 import { Confirm } from "#app/components/confirm.tsx";
+import { fileButton } from "#app/components/file-button.ts";
 import { FieldFrame, FieldHelp, fieldId, LabelText } from "#app/components/field-frame.tsx";
 import { PhotoLink } from "#app/components/photo-list.tsx";
 import { useProblemText } from "#app/components/problem-text.ts";
@@ -86,9 +87,6 @@ function PhotoBox({ name, id, label, camera }: PhotoBoxProps) {
 		</div>
 	);
 }
-
-const fileButton =
-	"file:mr-4 file:min-h-11 file:rounded-plat file:border-2 file:border-damson file:bg-paper file:px-5 file:py-2 file:font-bold file:text-damson";
 
 function KeptPhotos({ photoIds, hrefOf }: Pick<PhotoFieldProps, "photoIds" | "hrefOf">) {
 	const { t } = useTranslation("grower");

@@ -1,5 +1,6 @@
 import { useTranslation } from "react-i18next";
 import { describedBy, FieldFrame, FieldHelp, fieldId, FieldProblem } from "#app/components/field-frame.tsx";
+import { fileButton } from "#app/components/file-button.ts";
 import { mostFileBytes, mostRows } from "#app/directory/import/cells.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
@@ -23,7 +24,7 @@ export function FileBox({ problem }: { problem?: Problem }) {
 				accept=".csv,.tsv,.txt,.xlsx,text/csv"
 				aria-describedby={describedBy("file", help, problem)}
 				aria-invalid={problem ? true : undefined}
-				className="mt-1.5 block min-h-11 max-w-full"
+				className={`mt-1.5 block min-h-11 max-w-full ${fileButton}`}
 			/>
 		</FieldFrame>
 	);
