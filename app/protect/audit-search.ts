@@ -7,8 +7,12 @@ const LEAST = 1e-6;
 /** What rounding may take from a distance, as a share of it. */
 const ROUNDING = 1e-6;
 
-/** Every unknown's interval of values that fit all that is known, by unknown. */
-export function intervalsOf(solver: Solver, block: AuditBlock): { intervals: Map<number, Interval>; runs: number } {
+/** The interval of values that fit all that is known, by unknown: of every one, or of those that are wanted. */
+export function intervalsOf(
+	solver: Solver,
+	block: AuditBlock,
+	wanted?: ReadonlySet<number>,
+): { intervals: Map<number, Interval>; runs: number } {
 	if (block.rows.length === 0) return { intervals: freeIntervals(block), runs: 0 };
 	const program = new AuditProgram(
 		solver,
@@ -22,12 +26,13 @@ export function intervalsOf(solver: Solver, block: AuditBlock): { intervals: Map
 		return answer ? answer[column]! * block.scale : side * Infinity;
 	};
 	try {
-		const intervals = block.unknowns.map((unknown, column): [number, Interval] => {
+		const intervals = block.unknowns.flatMap((unknown, column): [number, Interval][] => {
+			if (wanted && !wanted.has(unknown)) return [];
 			const value = block.values[column]!;
 			const [floor] = block.ends[column]!;
 			// Never below what everybody knows, whatever the solver's last digit says.
 			const lower = Math.max(value + floor * block.scale, value + reach(column, -1));
-			return [unknown, [Math.min(value, lower), Math.max(value, value + reach(column, 1))]];
+			return [[unknown, [Math.min(value, lower), Math.max(value, value + reach(column, 1))]]];
 		});
 		return { intervals: new Map(intervals), runs: program.runs };
 	} finally {
@@ -51,15 +56,19 @@ export type Hold = { column: number; below: number; exact: boolean };
 /** Looks for points that fit all that is known, with one unknown at a wanted distance and an owner's knowledge held. */
 export class PointSearch {
 	readonly #program: AuditProgram;
+	readonly #costs: number[];
 
+	/** @param costs of moving a column, below the goal's gain of 1; the least where nothing is said */
 	constructor(
 		solver: Solver,
 		readonly block: AuditBlock,
+		costs: readonly number[] = [],
 	) {
+		this.#costs = block.ends.map((_, column) => Math.max(LEAST, costs[column] ?? 0));
 		// Two columns an unknown, above and below the truth, as the search wants to know who moved at all.
-		const columns = block.ends.flatMap(([lower, upper]): [number, number, number][] => [
-			[0, upper, LEAST],
-			[0, -lower, LEAST],
+		const columns = block.ends.flatMap(([lower, upper], column): [number, number, number][] => [
+			[0, upper, this.#costs[column]!],
+			[0, -lower, this.#costs[column]!],
 		]);
 		const rows = block.rows.map((row) => ({
 			...row,
@@ -87,12 +96,18 @@ export class PointSearch {
 		this.#program.bound(goal ^ 1, 0, 0);
 		this.#program.cost(goal, -1);
 		const answer = this.#program.solve();
-		this.#program.cost(goal, LEAST);
+		this.#program.cost(goal, this.#costs[column]!);
 		for (const c of [column, ...holds.map((hold) => hold.column)]) this.#bound(c);
 		if (!answer) throw new Error("the audit's search has no end");
 		const at = (c: number) => answer[2 * c]! - answer[2 * c + 1]!;
 		if (Math.abs(at(column)) < wanted * (1 - ROUNDING)) return null;
 		return this.block.unknowns.map((_, c) => at(c) * scale);
+	}
+
+	/** From now on, moving it costs no more than what is withheld already. */
+	cheapen(column: number) {
+		this.#costs[column] = LEAST;
+		for (const side of [0, 1]) this.#program.cost(2 * column + side, LEAST);
 	}
 
 	#ends(column: number, hold?: Hold): [above: number, below: number] {

@@ -14,9 +14,9 @@ export type { Interval } from "./audit-system.ts";
 
 /**
  * Who is tried: `everybody` knows what is shown; an `owner` also the own answers; those of one `line` are taken together, as
- * their sum is known; `revision` is who kept an earlier release and subtracts.
+ * their sum is known; `revision` is who kept an earlier release and subtracts, `other_survey` who kept another survey's.
  */
-export type AttackerKind = "everybody" | "owner" | "line" | "revision";
+export type AttackerKind = "everybody" | "owner" | "line" | "revision" | "other_survey";
 
 /** A withheld cell that can be worked out too closely. The key is for the desk; no value is told. */
 export interface AuditFailure {
@@ -25,9 +25,10 @@ export interface AuditFailure {
 	quantity: string | null;
 	/**
 	 * `solved`: known exactly; `narrow`: closer than its level; `by_owner`: too close for an owner who knows a part; `in_line`:
-	 * of it and others of its line the sum is found too closely; `by_revision`: by subtracting an earlier release.
+	 * of it and others of its line the sum is found too closely; `by_revision`: by subtracting an earlier release;
+	 * `by_other_survey`: by another survey's release beside this one, whichever of the two withholds it.
 	 */
-	kind: "solved" | "narrow" | "by_owner" | "in_line" | "by_revision";
+	kind: "solved" | "narrow" | "by_owner" | "in_line" | "by_revision" | "by_other_survey";
 	/** Whether it stands with everything withheld: other releases cause it, or what anybody sees. */
 	beyondHelp?: boolean;
 }

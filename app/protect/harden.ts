@@ -18,6 +18,8 @@ interface Hardening {
 	knownOutside: boolean;
 	audit: (shields: ReadonlySet<number>) => AuditResult;
 	more: (wishes: readonly OwnCell[], given: ReadonlySet<number>) => Set<number> | null;
+	/** What to withhold besides where other surveys' releases tell too much beside this one. */
+	besideOthers: (given: ReadonlySet<number>) => Set<number>;
 }
 
 /**
@@ -43,14 +45,18 @@ export function harden(chosen: ReadonlySet<number>, work: Hardening): { shields:
 		if (audit.passed) return { shields, audit };
 		const mendable = audit.failures.filter((failure) => !beyondHelp().has(nameOf(failure)));
 		if (mendable.length === 0) return { shields, audit: marked(audit, beyondHelp()) };
-		const given = new Set([...own, ...shields]);
-		const wishes = wishesFor(work, mendable, given, asked);
+		const [beside, here] = [mendable.filter(isBeside), mendable.filter((failure) => !isBeside(failure))];
+		const withheld = new Set([...own, ...shields]);
+		const given = new Set([...withheld, ...(beside.length > 0 ? work.besideOthers(withheld) : [])]);
+		const wishes = wishesFor(work, here, given, asked);
 		const added = work.more(wishes, given);
 		if (!added) break;
-		shields = new Set([...shields, ...wishes.map(({ index }) => index), ...added].filter((index) => !own.has(index)));
+		shields = new Set([...given, ...wishes.map(({ index }) => index), ...added].filter((index) => !own.has(index)));
 	}
 	return { shields: new Set(all), audit: marked(nothingShown(), beyondHelp()) };
 }
+
+const isBeside = ({ kind }: AuditFailure) => kind === "by_other_survey";
 
 const nameOf = ({ cellKey, quantity, kind }: AuditFailure) => `${cellKey} ${quantity} ${kind}`;
 

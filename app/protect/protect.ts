@@ -1,6 +1,7 @@
 import { auditPattern, type AuditResult } from "./audit.ts";
 import { type BlockChoice, chooseBlock, type ChoiceOptions, joinChoices, type Plan, planChoice } from "./choice.ts";
 import { auditRevision, type RevisionInput, withRevision } from "./audit-revision.ts";
+import { BesideOthers, withOthers } from "./audit-others.ts";
 import type { Holding } from "./holdings.ts";
 import { harden } from "./harden.ts";
 import { cutLevels } from "./cut-levels.ts";
@@ -8,7 +9,7 @@ import { ownCells } from "./levels.ts";
 import type { RevisionGuard } from "./revision.ts";
 import { checkRules, type CellStatus, type OwnReason, type ProtectionRules } from "./rules.ts";
 import { type Objective, sumOver } from "./loss.ts";
-import type { CellsByQuantity, SharedCells } from "./shared-cells.ts";
+import type { CellsByQuantity, SharedCells, SharedReleases } from "./shared-cells.ts";
 import { chooseShields } from "./shields.ts";
 import { loadSolver, type Solver } from "./solver.ts";
 import type { ProtectionTable } from "./table.ts";
@@ -71,6 +72,8 @@ export type ProtectionPlan = Plan & {
 	revision: ProtectOptions["revision"];
 	/** Own cells that other surveys tell, whole or in part. */
 	knownElsewhere: number;
+	/** The releases that tell, where a joint audit is to be made. */
+	releases?: SharedReleases;
 };
 
 /**
@@ -108,7 +111,8 @@ export function planProtection(
 	const told = whatIsTold(table, rules, guard?.told, shared.told);
 	const { ownersAttack } = choosing;
 	const { own, knownElsewhere } = cutLevels(solver, { table, rules, own: asked, told, before, ownersAttack });
-	return { ...planChoice(table, own, { ...choosing, told }, rules), rules, revision, knownElsewhere };
+	const { releases } = shared;
+	return { ...planChoice(table, own, { ...choosing, told }, rules), rules, revision, knownElsewhere, releases };
 }
 
 /** The last step: one pattern from the choices of all blocks, audited. */
@@ -123,6 +127,7 @@ export function concludeProtection(
 	const choice = joinChoices(solver, plan, choices);
 	const reasons = new Map(own.map((cell) => [cell.index, cell.reasons]));
 	watch("auditing");
+	const others = othersOf(solver, plan);
 	// Where the chooser, which asks for a little more than the audit, finds nothing, own cells alone may do: so it is where a
 	// revision tells the same again. What does not do is hardened, up to withholding everything.
 	const { shields, audit } = harden(choice?.shields ?? new Set(), {
@@ -130,8 +135,12 @@ export function concludeProtection(
 		rules,
 		own,
 		useless: toldCells(options.told),
-		knownOutside: toldCells(options.told).size > 0 || options.told?.publicFactor != null,
-		audit: (chosen) => auditPattern(solver, table, own, chosen, { ...options, rules }),
+		knownOutside: toldCells(options.told).size > 0 || options.told?.publicFactor != null || others !== null,
+		audit: (chosen) => {
+			const alone = auditPattern(solver, table, own, chosen, { ...options, rules });
+			return others ? withOthers(alone, others.audit(new Set([...reasons.keys(), ...chosen]))) : alone;
+		},
+		besideOthers: (given) => others?.mend(given) ?? new Set(),
 		more: (wishes, given) => chooseShields(solver, plan, wishes, given),
 	});
 	const pattern = new Map(
@@ -147,6 +156,11 @@ export function concludeProtection(
 	const loss = bound === null ? null : { objective: options.objective, lost, bound };
 	const { knownElsewhere } = plan;
 	return { pattern, audit: { ...beside(solver, plan, audit, pattern), knownElsewhere }, loss };
+}
+
+function othersOf(solver: Solver, { table, rules, own, options, loss, releases }: ProtectionPlan): BesideOthers | null {
+	if (!releases || releases.others.length === 0) return null;
+	return new BesideOthers(solver, { table, rules, own, told: options.told ?? {}, loss }, releases);
 }
 
 /** The audit, with what the draft tells beside earlier releases. */

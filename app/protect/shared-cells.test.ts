@@ -46,7 +46,7 @@ describe("a cell that two surveys share", () => {
 
 	test("is nothing of another quantity, nor of a network that is wider there", () => {
 		const acres = here.map((one) => ({ ...one, amounts: { acres: 4 } }));
-		expect(beside(acres, ["c1|apple"], here)).toEqual({ told: new Map(), keptBack: new Map() });
+		expect(beside(acres, ["c1|apple"], here)).toMatchObject({ told: new Map(), keptBack: new Map() });
 		const wider = [...here, ...holdingsOf({ far: many(9, 40) })];
 		expect([...beside(wider, both("c1", REGION), here).told.get("trees")!].toSorted()).toEqual(both("c1").toSorted());
 		const narrower = here.filter(({ areaKey }) => areaKey === "c1");

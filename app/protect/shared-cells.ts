@@ -18,6 +18,15 @@ export interface SharedCells {
 	told: CellsByQuantity;
 	/** The very value is withheld there, so that it may not be shown here; with the room that it keeps, by quantity. */
 	keptBack: ReadonlyMap<string, Readonly<Record<string, number>>>;
+	/** What the joint audit writes down its equations from; without it none is made. */
+	releases?: SharedReleases;
+}
+
+export interface SharedReleases {
+	areas: AreaTree;
+	/** behind the draft */
+	holdings: readonly Holding[];
+	others: readonly OtherSurvey[];
 }
 
 /** Sums of doubles differ in their last digits. */
@@ -35,9 +44,10 @@ const SAME = 1e-6;
  * Compared by area and crop: a county of states that are not asked here is a part of the network's cells there.
  * Not the same quantity, and so never carried over: counts of answers, of which each survey has its own; amounts that can
  * only be compared (a normal crop beside a harvest); the trees of the frame, which no release tells.
- * Not covered: what few owners who differ can reckon from both figures, each knowing the own difference; and what follows
- * from sums of cells that both withhold, such as a line of which this release shows one part and the other one the rest.
- * For that both releases would have to be one program, as a survey's revisions are (`auditRevision`).
+ * What follows from lines of both releases together, such as one of which this release shows one part and the other one the
+ * rest, is for `BesideOthers`, which takes `releases` as one program.
+ * Not covered: cells in which anybody's amount differs. Nothing ties their two values to each other there, though somebody
+ * who knows how few differ, or an owner who knows the own difference, could say how far apart they are at most.
  * @param others with holdings as they were when their release was drafted.
  */
 export function sharedCells(input: {
@@ -53,22 +63,29 @@ export function sharedCells(input: {
 	const hidden = new Map<string, Set<string>>();
 	for (const other of others) {
 		for (const quantity of other.quantities) {
-			const there = amountsOf(other.holdings, quantity);
-			if (there.length === 0) continue;
-			const answered = new Set(there.flatMap(({ areaKey, cropKey }) => around(areaKey, cropKey)));
-			const changed = changesByCell(there, amountsOf(holdings, quantity), [quantity], around);
-			for (const key of living) {
-				if (!answered.has(key)) continue;
-				const differs = [...(changed.get(key)?.values() ?? [])].some(([by]) => Math.abs(by!) > SAME);
-				if (!differs) note(other.shown.has(key) ? told : hidden, quantity, key);
-			}
+			const same = sameCells(other.holdings, holdings, quantity, around);
+			for (const key of same) if (living.has(key)) note(other.shown.has(key) ? told : hidden, quantity, key);
 		}
 	}
-	return { told, keptBack: roomsOf(hidden, told, input, around) };
+	return { told, keptBack: roomsOf(hidden, told, input, around), releases: { areas, holdings, others } };
+}
+
+/** Keys of the cells in which somebody answered and each owner has as much in both. */
+export function sameCells(
+	there: readonly Holding[],
+	here: readonly Holding[],
+	quantity: string,
+	around: (areaKey: string, cropKey: string) => string[],
+): Set<string> {
+	const [was, is] = [amountsOf(there, quantity), amountsOf(here, quantity)];
+	const changed = changesByCell(was, is, [quantity], around);
+	const answered = new Set(was.flatMap(({ areaKey, cropKey }) => around(areaKey, cropKey)));
+	const differs = (key: string) => [...(changed.get(key)?.values() ?? [])].some(([by]) => Math.abs(by!) > SAME);
+	return new Set([...answered].filter((key) => !differs(key)));
 }
 
 /** As `cellsAround`; counties outside the survey's areas are in the network's cells alone. */
-function aroundWithin(areas: AreaTree): (areaKey: string, cropKey: string) => string[] {
+export function aroundWithin(areas: AreaTree): (areaKey: string, cropKey: string) => string[] {
 	const inside = new Set(areas.map(({ areaKey }) => areaKey));
 	const around = cellsAround([...areas]);
 	const network = cellsAround([]);
@@ -116,7 +133,7 @@ function note(cells: Map<string, Set<string>>, quantity: string, key: string) {
 }
 
 /** One quantity alone: what else two surveys ask differs anyway. */
-function amountsOf(holdings: readonly Holding[], quantity: string): Holding[] {
+export function amountsOf(holdings: readonly Holding[], quantity: string): Holding[] {
 	return holdings.flatMap(({ owner, areaKey, cropKey, amounts }) => {
 		const amount = amounts[quantity];
 		return amount === undefined ? [] : [{ owner, areaKey, cropKey, amounts: { [quantity]: amount } }];

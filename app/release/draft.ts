@@ -117,7 +117,7 @@ export const ReleaseAudit = z.object({
 	attackers: z
 		.array(
 			z.object({
-				kind: z.enum(["everybody", "owner", "line", "revision"]),
+				kind: z.enum(["everybody", "owner", "line", "revision", "other_survey"]),
 				tried: z.number().int(),
 				failed: z.number().int(),
 			}),

@@ -213,9 +213,8 @@ export function attackEditions(highs: Highs, editions: readonly Seen[], rules: P
 }
 
 /**
- * Tries what one survey's release withholds, for who takes over from the release of another survey of the same growers
- * every cell that it shows and in which each owner has as much in both. What these cells tell by themselves is no
- * fault of this release: it may not bring anybody nearer.
+ * Tries what two surveys of the same growers withhold, for who keeps both releases and knows of which cells each owner has as
+ * much in both. What the first release tells by itself is no fault of the second: it may not bring anybody nearer.
  */
 export function attackBeside(
 	highs: Highs,
@@ -223,27 +222,35 @@ export function attackBeside(
 	quantity: Amount,
 	rules: ProtectionRules,
 ): { broken: Told[]; tried: number; knownBefore: number } {
-	const known = allKeys.filter((key) => there.shown.has(key) && hasSame(there.cells, here.cells, key, quantity));
-	const rows = (none: boolean) => {
-		const shown = allKeys.filter((key) => !here.cells.has(key) || (!none && here.shown.has(key)));
-		return [...new Set([...shown, ...known])].map(
-			(key) => `${sumOf(leavesOf(key).map(nameIn(0)))} = ${round(valueOf(here.cells, key, quantity))}`,
-		);
-	};
-	const [before, after] = [new Attack(highs, rows(true)), new Attack(highs, rows(false))];
-	const aims = cellAims(here.cells, here.shown, quantity, rules, nameIn(0)).filter(({ key }) => !known.includes(key));
+	const rowsOf = ({ cells, shown }: Seen, e: number) =>
+		allKeys
+			.filter((key) => !cells.has(key) || shown.has(key))
+			.map((key) => `${sumOf(leavesOf(key).map(nameIn(e)))} = ${round(valueOf(cells, key, quantity))}`);
+	const same = allKeys.filter((key) => hasSame(there.cells, here.cells, key, quantity)).map(sameIn(0, 1));
+	const rows = (seen: Seen) => [...rowsOf(seen, 0), ...rowsOf(there, 1), ...same];
+	const before = new Attack(highs, rows({ ...here, shown: new Set() }));
+	const after = new Attack(highs, rows(here));
+	const aims = [here, there].flatMap(({ cells, shown }, e) => cellAims(cells, shown, quantity, rules, nameIn(e)));
 	const broken: Told[] = [];
 	let knownBefore = 0;
+	const both = ["Maximize", "Minimize"] as const;
 	for (const aim of aims) {
-		const near = 1e-5 * (1 + aim.value);
+		if (!after.finds({ ...aim, level: 0.98 * aim.level }, [], both)) continue;
 		const [above, below] = before.room(aim);
 		const left = Math.min(aim.level, above, aim.value < aim.level ? aim.level : below);
-		if (left < aim.level - near) knownBefore += 1;
-		const level = 0.98 * left;
-		if (after.finds({ ...aim, level }, [], ["Maximize", "Minimize"]))
+		if (after.finds({ ...aim, level: 0.98 * left }, [], both))
 			broken.push({ key: aim.key, quantity, attacker: "who kept the release of another survey" });
+		else knownBefore += 1;
 	}
 	return { broken, tried: aims.length, knownBefore };
+}
+
+/** That a cell is the same in both. */
+function sameIn(e: number, other: number): (key: string) => string {
+	return (key) => {
+		const leaves = leavesOf(key);
+		return `${sumOf(leaves.map(nameIn(e)))} ${leaves.map((leaf) => `- ${nameIn(other)(leaf)}`).join(" ")} = 0`;
+	};
 }
 
 function hasSame(there: Cells, here: Cells, key: string, quantity: Amount): boolean {
@@ -256,14 +263,11 @@ function hasSame(there: Cells, here: Cells, key: string, quantity: Amount): bool
 /** Cells in which nobody's answers differ from one release to another are known to be the same. */
 function sameAnswers(editions: readonly Seen[]): string[] {
 	return editions.flatMap((now, e) =>
-		editions.slice(0, e).flatMap((before, b) =>
-			allKeys
-				.filter((key) => changed(before.cells, now.cells, key).length === 0)
-				.map((key) => {
-					const leaves = leavesOf(key);
-					return `${sumOf(leaves.map(nameIn(e)))} ${leaves.map((leaf) => `- ${nameIn(b)(leaf)}`).join(" ")} = 0`;
-				}),
-		),
+		editions
+			.slice(0, e)
+			.flatMap((before, b) =>
+				allKeys.filter((key) => changed(before.cells, now.cells, key).length === 0).map(sameIn(e, b)),
+			),
 	);
 }
 

@@ -6,7 +6,11 @@ import { useFormat } from "#app/i18n/use-format.ts";
 type Widths = Record<"under1" | "from1to2" | "from2to5" | "from5", number>;
 type Words = { en: string; es: string };
 type Room = { quantity: string; label?: Words; narrowest: number | null; widths: Widths };
-type Attacker = { kind: "everybody" | "owner" | "line" | "revision"; tried: number; failed: number };
+type Attacker = {
+	kind: "everybody" | "owner" | "line" | "revision" | "other_survey";
+	tried: number;
+	failed: number;
+};
 export type AuditTablesProps = {
 	audit: { narrowest: number | null; widths: Widths; byQuantity: Room[]; attackers: Attacker[] };
 };
