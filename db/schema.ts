@@ -138,6 +138,17 @@ export interface CollectAnswer {
   value: Json | null;
 }
 
+export interface CollectAnsweredCount {
+  bearing_trees: number;
+  county_fips: string;
+  crop_key: string;
+  day: number;
+  operations: number;
+  state_fips: string;
+  stratum_key: string;
+  survey_id: string;
+}
+
 export interface CollectContact {
   contact_id: Generated<string>;
   made_at: Generated<Timestamp>;
@@ -863,6 +874,7 @@ export interface DB {
   "auth.session": AuthSession;
   "auth.tries": AuthTries;
   "collect.answer": CollectAnswer;
+  "collect.answered_count": CollectAnsweredCount;
   "collect.contact": CollectContact;
   "collect.correction": CollectCorrection;
   "collect.edit_finding": CollectEditFinding;

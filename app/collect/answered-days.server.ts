@@ -12,23 +12,18 @@ export async function listAnsweredDays(
 	surveyId: string,
 	cropKey: string,
 ): Promise<AnsweredDay[]> {
-	const day = sql<number>`floor(extract(epoch from r.first_submitted_at - s.opened_at) / 86400)::int`;
 	return trx
-		.selectFrom("collect.response as r")
-		.innerJoin("collect.frame_crop as c", (join) =>
-			join.onRef("c.survey_id", "=", "r.survey_id").onRef("c.operation_id", "=", "r.operation_id"),
-		)
-		.innerJoin("collect.survey as s", "s.survey_id", "r.survey_id")
-		.where("r.survey_id", "=", surveyId)
-		.where("r.state_fips", "in", viewer.stateFips)
-		.where("r.submitted_at", "is not", null)
-		.$if(cropKey !== "all", (rows) => rows.where("c.crop_key", "=", cropKey))
-		.groupBy(day)
-		.orderBy(day)
+		.selectFrom("collect.answered_count")
+		.where("survey_id", "=", surveyId)
+		.where("crop_key", "=", cropKey)
+		.where("state_fips", "in", viewer.stateFips)
+		.groupBy("day")
+		.having(sql`sum(operations)`, ">", 0)
+		.orderBy("day")
+		.select("day")
 		.select([
-			day.as("day"),
-			sql<number>`count(distinct r.operation_id)::int`.as("operations"),
-			sql<number>`sum(c.bearing_trees)::float8`.as("bearingTrees"),
+			sql<number>`sum(operations)::int`.as("operations"),
+			sql<number>`sum(bearing_trees)::float8`.as("bearingTrees"),
 		])
 		.execute();
 }

@@ -26,23 +26,27 @@ export async function listCountyCounts(
 	surveyId: string,
 	{ sort, direction, page }: Order,
 ) {
-	const asked = sql<number>`count(*)`;
-	const answered = sql<number>`count(r.response_id)`;
-	const share = sql<number>`100.0 * count(r.response_id) / count(*)`;
+	const asked = sql<number>`sum(f.operations)::int`;
+	const answered = sql<number>`coalesce(a.answered, 0)::int`;
+	const share = sql<number>`100.0 * coalesce(a.answered, 0) / sum(f.operations)`;
 	const column = { county: sql.ref("c.name"), state: sql.ref("s.name"), asked, answered, share };
+	const answers = trx
+		.selectFrom("collect.answered_count")
+		.where("survey_id", "=", surveyId)
+		.where("crop_key", "=", "all")
+		.where("state_fips", "in", viewer.stateFips)
+		.groupBy("county_fips")
+		.select(["county_fips", sql<number>`sum(operations)`.as("answered")]);
 	const rows: CountyCount[] = await trx
-		.selectFrom("collect.frame_operation as f")
+		.selectFrom("collect.frame_count as f")
 		.innerJoin("directory.county as c", "c.county_fips", "f.county_fips")
 		.innerJoin("directory.state as s", "s.state_fips", "f.state_fips")
-		.leftJoin("collect.response as r", (join) =>
-			join
-				.onRef("r.survey_id", "=", "f.survey_id")
-				.onRef("r.operation_id", "=", "f.operation_id")
-				.on("r.submitted_at", "is not", null),
-		)
+		.leftJoin(answers.as("a"), "a.county_fips", "f.county_fips")
 		.where("f.survey_id", "=", surveyId)
+		.where("f.crop_key", "=", "all")
 		.where("f.state_fips", "in", viewer.stateFips)
-		.groupBy(["f.county_fips", "f.state_fips", "c.name", "s.name"])
+		.groupBy(["f.county_fips", "f.state_fips", "c.name", "s.name", "a.answered"])
+		.having(sql`sum(f.operations)`, ">", 0)
 		.select([
 			"f.county_fips as countyFips",
 			"c.name as countyName",

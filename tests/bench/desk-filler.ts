@@ -27,7 +27,7 @@ export async function fillDesk(owner: Client, size: number): Promise<FilledDesk>
 	const [last, surveyId] = (
 		await owner.query<{ survey_id: string }>(surveys, [JSON.stringify(afterHarvest), personId])
 	).rows.map(({ survey_id }) => survey_id) as [string, string];
-	const kept = ["frame_operation", "frame_crop", "fact"];
+	const kept = ["frame_operation", "frame_crop", "response", "fact"];
 	for (const table of kept) await owner.query(`alter table collect.${table} disable trigger user`);
 	for (const survey of [last, surveyId]) {
 		await owner.query("insert into collect.survey_state select $1::uuid, unnest($2::text[])", [survey, states]);
@@ -39,7 +39,9 @@ export async function fillDesk(owner: Client, size: number): Promise<FilledDesk>
 	}
 	for (const table of kept) await owner.query(`alter table collect.${table} enable trigger user`);
 	for (const survey of [last, surveyId])
-		await owner.query("select collect.recount_frame($1), collect.retally_survey($1)", [survey]);
+		await owner.query("select collect.recount_frame($1), collect.recount_answers($1), collect.retally_survey($1)", [
+			survey,
+		]);
 	for (const query of [findings, contacts, mailings]) await owner.query(query, [surveyId, personId]);
 	await owner.query(events, [personId, size * 2]);
 	await owner.query(

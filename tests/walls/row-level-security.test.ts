@@ -62,6 +62,14 @@ const guarded: Record<string, Guarded> = {
 	"collect.fact": { key: "operation_id", state: "state_fips", desk: all, grower: all },
 	"collect.tally": { key: "measure_key", state: "state_fips", desk: all, grower: "nothing", deskReads: true },
 	// Of a stratum that nobody else is in, so that the count is this operation's alone.
+	"collect.answered_count": {
+		key: "stratum_key",
+		only: "crop_key = 'all'",
+		state: "state_fips",
+		desk: [],
+		grower: "nothing",
+		deskReads: true,
+	},
 	"collect.frame_count": {
 		key: "stratum_key",
 		only: "crop_key = 'all'",
@@ -82,11 +90,13 @@ const rehearsalsApart = "collect.survey";
 
 /** What runs with its owner's rights, and why that leads to no grower's row. */
 const ownersRights: Record<string, string> = {
+	"collect.count_answers": "a trigger, which answers nothing",
 	"collect.count_frame_crop": "a trigger, which answers nothing",
 	"collect.count_frame_operation": "a trigger, which answers nothing",
 	"collect.discard_rehearsal": "deletes a rehearsal, for a desk that holds all its states",
 	"collect.hidden_surveys": "ids of rehearsals, which the asker could not hide without knowing",
 	"collect.know_frames": "has the planner look at frames anew, and answers nothing",
+	"collect.recount_moved_answers": "a trigger, which answers nothing",
 	"collect.refuse_mixed_frame": "a trigger, which answers nothing",
 	"collect.refuse_rehearsal": "a trigger, which answers nothing",
 	"collect.rehearsal_of": "the id of a draft's rehearsal",

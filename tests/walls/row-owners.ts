@@ -112,8 +112,9 @@ async function addHolder(owner: Client, { surveyId, draftId, personId }: Shared,
 	);
 	const responseId = await idOf(
 		owner,
-		`insert into collect.response (survey_id, operation_id, state_fips, language, pledge_version)
-		values ($1, $2, $3, 'en', '1') returning response_id as id`,
+		`insert into collect.response (survey_id, operation_id, state_fips, language, pledge_version, submitted_version,
+			receipt_code, first_submitted_at, submitted_at)
+		values ($1, $2, $3, 'en', '1', 1, 'R-' || $2::uuid, now(), now()) returning response_id as id`,
 		[...ids, state],
 	);
 	await owner.query(
