@@ -33,11 +33,14 @@ export function cropRows(measure: ReleaseMeasure, cells: CropCell[]): CropCell[]
 	return [...numbered, ...rest.toSorted((a, b) => a.cropKey.localeCompare(b.cropKey)), ...all];
 }
 
-/** Losses to single causes, told like the whole loss as shares of one normal crop. Other measures have no parts. */
+/**
+ * Losses to single causes, told like the whole loss as shares of one normal crop. Other measures have no parts, and how many
+ * operations lost everything is a share of operations, not of the crop.
+ */
 export function partsOfLoss(whole: ReleaseMeasure, measures: ReleaseMeasure[]): ReleaseMeasure[] {
 	if (whole.key !== "crop_loss") return [];
 	return measures.filter(
-		({ key, kind, unit }) => key !== whole.key && key.endsWith("_loss") && kind === whole.kind && unit === whole.unit,
+		({ key, unit }) => key.endsWith("_loss") && key !== whole.key && key !== "total_loss" && unit === whole.unit,
 	);
 }
 

@@ -16,6 +16,8 @@ const measure = (key: string): ReleaseMeasure => ({
 	worse: "more",
 	hue: "loss",
 });
+/** As the ready form has both: what a freeze took, and how many operations lost everything. */
+const share = (key: string): ReleaseMeasure => ({ ...measure(key), kind: "proportion" });
 const cell = (cropKey: string, areaKey: string, value: number | null): CropCell => ({
 	cropKey,
 	areaKey,
@@ -33,7 +35,7 @@ const cell = (cropKey: string, areaKey: string, value: number | null): CropCell 
 const say: Say = (key, values = {}) => `${key} ${Object.values(values).join(" ")}`;
 const input = {
 	release: { season: 2025, title: label },
-	measures: [measure("crop_loss"), measure("freeze_loss")],
+	measures: [measure("crop_loss"), share("freeze_loss"), share("total_loss")],
 	measure: measure("crop_loss"),
 	earlier: {},
 	pests: [],
@@ -110,6 +112,8 @@ test("causes are drawn where the release tells them, and of pests those that mos
 	];
 	const draft = draftReport({ ...input2, measures: [...input.measures, scab], pests });
 	expect(draft.blocks).toContainEqual(expect.objectContaining({ type: "chart", chart: "causes" }));
+	const figures = draft.blocks.flatMap((block) => (block.type === "figure" ? [block.measure] : []));
+	expect(figures).toEqual(["total_loss"]);
 	const texts = JSON.stringify(draft);
 	expect(texts).toContain("[[scab_seen|apple|network]]");
 	expect(texts).not.toContain("[[scab_seen|plum|network]]");

@@ -150,7 +150,7 @@ function Corrections({ report, versions, told }: PartProps) {
 				(block) =>
 					block.type === "photo_gone" && (
 						<Notice key={block.id} tone="info" title={t("photos.goneTitle")}>
-							{t(`photos.gone.${block.takenAway.because}`, { date: format.dayOf(block.takenAway.at) })}
+							{t(`photos.goneWhy.${block.takenAway.because}`, { date: format.dayOf(block.takenAway.at) })}
 						</Notice>
 					),
 			)}
