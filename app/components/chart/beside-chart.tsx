@@ -3,7 +3,7 @@ import type { FigureShape } from "#app/lib/format.ts";
 import type { Hue } from "#app/components/map/map-data.ts";
 import { classes } from "#app/components/classes.ts";
 import { markFill } from "./chart-fills.ts";
-import { careClass, decimalsOf, ends, type Shown } from "./chart-look.ts";
+import { careClass, ends, type Shown, useTickText } from "./chart-look.ts";
 import { bandHeight, RowChart, Whisker } from "./row-chart.tsx";
 import { rangeOf } from "#app/lib/likely-range.ts";
 import { scaleOf } from "./scale.ts";
@@ -19,6 +19,7 @@ type BesideChartProps = {
 /** One own value over that of an area with its likely range, on one scale: bars from zero, or days as dots. */
 export function BesideChart({ own, area, measure, alternative }: BesideChartProps) {
 	const format = useFormat();
+	const tickText = useTickText();
 	const days = measure.unit === "day";
 	const range = rangeOf(area.cell);
 	const values = [own.value, area.cell.value ?? 0, ...ends(area.cell)];
@@ -36,7 +37,7 @@ export function BesideChart({ own, area, measure, alternative }: BesideChartProp
 		<RowChart
 			rows={rows.map(({ key, label, shown }) => ({ key, label, value: format.figure(shown, measure), look: "number" }))}
 			scale={scale}
-			tickText={(tick) => (days ? format.figure(tick, measure) : format.number(tick, decimalsOf(scale.ticks)))}
+			tickText={(tick) => tickText(tick, measure, scale.ticks)}
 			alternative={alternative}
 			mark={(index, top, x) => {
 				const { key, shown, fill } = rows[index]!;

@@ -1,9 +1,8 @@
 import { useTranslation } from "react-i18next";
 import { classes } from "#app/components/classes.ts";
-import { useFormat } from "#app/i18n/use-format.ts";
 import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import { paleFill, partFill } from "./chart-fills.ts";
-import { decimalsOf, ends, lookOf, numbered, useValueText } from "./chart-look.ts";
+import { ends, lookOf, numbered, useTickText, useValueText } from "./chart-look.ts";
 import { bandHeight, RowChart, Whisker } from "./row-chart.tsx";
 import { rangeOf } from "#app/lib/likely-range.ts";
 import { scaleOf } from "./scale.ts";
@@ -14,7 +13,7 @@ type CauseBarsProps = { drawn: Extract<ResolvedChart, { chart: "causes" }>; alte
 export function CauseBars({ drawn: { measure, parts, rows }, alternative }: CauseBarsProps) {
 	const { t } = useTranslation();
 	const valueText = useValueText();
-	const format = useFormat();
+	const tickText = useTickText();
 	const wholes = rows.map(({ whole }) => whole);
 	const scale = scaleOf(numbered(wholes).flatMap(ends).concat([0]), { zero: true });
 	return (
@@ -26,7 +25,7 @@ export function CauseBars({ drawn: { measure, parts, rows }, alternative }: Caus
 				look: lookOf(whole),
 			}))}
 			scale={scale}
-			tickText={(tick) => format.number(tick, decimalsOf(scale.ticks))}
+			tickText={(tick) => tickText(tick, measure, scale.ticks)}
 			alternative={alternative}
 			mark={(index, top, x) => {
 				const row = rows[index]!;

@@ -14,8 +14,7 @@ export const numbered = <C extends Shown>(cells: C[]) => cells.filter((cell) => 
 /** What a scale must hold of a figure. */
 export const ends = (cell: Shown): [number, number] => rangeOf(cell) ?? [cell.value ?? 0, cell.value ?? 0];
 export const careClass = (cell: Shown) => cell.steadiness === "care" && "chart-care";
-export const decimalsOf = (ticks: number[]) =>
-	Math.max(0, ...ticks.map((tick) => `${tick}`.split(".")[1]?.length ?? 0));
+const decimalsOf = (ticks: number[]) => Math.max(0, ...ticks.map((tick) => `${tick}`.split(".")[1]?.length ?? 0));
 
 /** A row's figure in words, or why there is none. */
 export function useValueText() {
@@ -24,5 +23,15 @@ export function useValueText() {
 	return (cell: Shown, measure: FigureShape): string => {
 		if (lookOf(cell) === "withheld") return t("report:chart.withheld");
 		return lookOf(cell) === "rough" ? t("report:chart.rough") : format.figure(cell.value ?? 0, measure);
+	};
+}
+
+/** A value on an axis: days and percents with their sign or month, all others as plain numbers, whose unit is in the table. */
+export function useTickText() {
+	const format = useFormat();
+	return (tick: number, measure: FigureShape, ticks: number[]): string => {
+		if (measure.unit === "day") return format.figure(tick, measure);
+		const decimals = decimalsOf(ticks);
+		return measure.unit === "percent" ? format.figure(tick, { ...measure, decimals }) : format.number(tick, decimals);
 	};
 }

@@ -3,7 +3,7 @@ import { classes } from "#app/components/classes.ts";
 import { rangeOf } from "#app/lib/likely-range.ts";
 import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import { markFill } from "./chart-fills.ts";
-import { decimalsOf, ends } from "./chart-look.ts";
+import { ends, useTickText } from "./chart-look.ts";
 import { chartWidth } from "./row-chart.tsx";
 import { placeOn, scaleOf } from "./scale.ts";
 
@@ -14,6 +14,7 @@ const [top, bottom, left, right] = [28, 150, 72, chartWidth - 40];
 /** One figure season by season, each with its likely range; a season without a number is left open. */
 export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLineProps) {
 	const format = useFormat();
+	const tickText = useTickText();
 	const told = rows.filter(({ cell }) => cell.value !== null && cell.steadiness !== "rough");
 	const days = measure.unit === "day";
 	const held = told.flatMap(({ cell }) => ends(cell));
@@ -34,7 +35,7 @@ export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLine
 				<g key={tick}>
 					<line x1={0} x2={chartWidth} y1={y(tick)} y2={y(tick)} className="chart-grid" />
 					<text x={0} y={y(tick) - 3} className="chart-tick">
-						{days ? format.figure(tick, measure) : format.number(tick, decimalsOf(scale.ticks))}
+						{tickText(tick, measure, scale.ticks)}
 					</text>
 				</g>
 			))}
@@ -54,7 +55,7 @@ export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLine
 							className={classes("chart-edge", markFill[measure.hue], cell.steadiness === "care" && "chart-care")}
 						/>
 						<text x={x(season)} y={upper - 8} textAnchor="middle" className="chart-text font-bold">
-							{days
+							{days || measure.unit === "percent"
 								? format.figure(cell.value ?? 0, { ...measure, season })
 								: format.number(cell.value ?? 0, measure.decimals)}
 						</text>

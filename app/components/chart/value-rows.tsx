@@ -1,10 +1,9 @@
 import { useTranslation } from "react-i18next";
 import { classes } from "#app/components/classes.ts";
 import { useAreaName } from "#app/components/map/area-name.ts";
-import { useFormat } from "#app/i18n/use-format.ts";
 import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import { markFill } from "./chart-fills.ts";
-import { careClass, decimalsOf, ends, lookOf, numbered, type Shown, useValueText } from "./chart-look.ts";
+import { careClass, ends, lookOf, numbered, type Shown, useTickText, useValueText } from "./chart-look.ts";
 import { bandHeight, RowChart, Whisker } from "./row-chart.tsx";
 import { rangeOf } from "#app/lib/likely-range.ts";
 import { scaleOf } from "./scale.ts";
@@ -49,7 +48,7 @@ function useJoined(rows: ValueRowsProps["rows"]): ValueRowsProps["rows"] {
 function ValueRows({ rows: all, measure, bars, alternative }: ValueRowsProps) {
 	const rows = useJoined(all);
 	const valueText = useValueText();
-	const format = useFormat();
+	const tickText = useTickText();
 	const days = measure.unit === "day";
 	const values = numbered(rows.map(({ cell }) => cell)).flatMap(ends);
 	const scale = scaleOf(days && values.length > 0 ? values : [...values, 0], {
@@ -66,7 +65,7 @@ function ValueRows({ rows: all, measure, bars, alternative }: ValueRowsProps) {
 				look: lookOf(cell),
 			}))}
 			scale={scale}
-			tickText={(tick) => (days ? format.figure(tick, measure) : format.number(tick, decimalsOf(scale.ticks)))}
+			tickText={(tick) => tickText(tick, measure, scale.ticks)}
 			alternative={alternative}
 			mark={(index, top, x) => {
 				const { cell } = rows[index]!;
