@@ -21,6 +21,7 @@ export async function loader({ context }: Route.LoaderArgs) {
 	return {
 		term,
 		waiting: request !== null && request.decision === null,
+		declined: request?.decision === "declined" ? request.decisionReason : null,
 		// What was told last time, so that it is looked over and not typed anew. The agreement is accepted each time.
 		earlier: request && { affiliation: request.affiliation, purpose: request.purpose },
 	};
@@ -39,12 +40,12 @@ export async function action({ context, request }: Route.ActionArgs) {
 export default function AskAccess({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("dataroom");
 	const format = useFormat();
-	const { term, waiting, earlier } = loaderData;
+	const { term, waiting, declined, earlier } = loaderData;
 	const day = (iso: string | null) => (iso ? format.day(iso) : "");
 	const lasting = term !== null && !term.renewable;
 	if (lasting || waiting)
 		return (
-			<Page title={t("access.title")} lead={t("access.lead")} width="narrow">
+			<Page title={t(lasting ? "access.titleHave" : "access.title")} lead={t("access.lead")} width="narrow">
 				<Notice tone="info" title={t(waiting ? "home.waitingTitle" : "access.haveTitle")}>
 					{lasting && term.lastDay && (
 						<p className="mb-3">{t("access.haveBody", { day: day(term.lastDay), from: day(term.renewableFrom) })}</p>
@@ -60,6 +61,11 @@ export default function AskAccess({ loaderData, actionData }: Route.ComponentPro
 		: t("access.lead");
 	return (
 		<Page title={t(term ? "access.titleAgain" : "access.title")} lead={lead} width="narrow">
+			{declined && (
+				<Notice tone="attention" title={t("home.declinedTitle")}>
+					{declined}
+				</Notice>
+			)}
 			<RequestForm earlier={earlier} actionData={actionData} />
 		</Page>
 	);

@@ -45,7 +45,7 @@ export default function Access({ loaderData, actionData }: Route.ComponentProps)
 	const decided = loaderData.requests.filter((request) => request.decision);
 	return (
 		<Page title={t("requests.title")} lead={t("requests.lead")} width="narrow">
-			<ErrorSummary problems={actionData?.problems} labels={{ reason: t("requests.reason") }} />
+			<ErrorSummary problems={actionData?.problems} labels={{ reason: t("requests.yourReason") }} />
 			<Section title={t("requests.open")}>
 				{open.length === 0 && <EmptyState title={t("requests.noneTitle")}>{t("requests.noneBody")}</EmptyState>}
 				{/* One form at a time, the longest waiting first: a reason is written for this request and no other. */}
@@ -124,7 +124,7 @@ function DecideForm({ request, actionData }: CardProps) {
 			<input type="hidden" name="accessRequestId" value={request.accessRequestId} />
 			<TextField
 				name="reason"
-				label={t("requests.reason")}
+				label={t("requests.yourReason")}
 				help={t("requests.reasonHelp")}
 				optional
 				multiline
