@@ -36,10 +36,13 @@ export default function FormLayout({ loaderData, params }: Route.ComponentProps)
 	const said = useFormWords();
 	const { title, mayEdit, makerName, version, last } = loaderData;
 	const { formId } = params;
+	// A ready form has no version of its own until a survey asks it, and any survey can.
+	const isReady = !mayEdit && !makerName;
+	const unpublished = isReady ? t("layout.ready") : t("layout.unpublished");
 	return (
 		<Page
 			title={said(title)}
-			lead={version === null ? t("layout.unpublished") : t("layout.version", { version: format.number(version) })}
+			lead={version === null ? unpublished : t("layout.version", { version: format.number(version) })}
 			actions={
 				<ButtonLink to={`${href("/desk/forms/new")}?from=${formId}`} kind="secondary">
 					{t("list.copy")}
@@ -50,7 +53,7 @@ export default function FormLayout({ loaderData, params }: Route.ComponentProps)
 				<Link to={href("/desk/forms")}>{t("layout.back")}</Link>
 			</p>
 			{!mayEdit && (
-				<Notice tone="info">{makerName ? t("layout.readOnly", { name: makerName }) : t("layout.readOnlyReady")}</Notice>
+				<Notice tone="info">{isReady ? t("layout.readOnlyReady") : t("layout.readOnly", { name: makerName })}</Notice>
 			)}
 			<Tabs
 				label={t("layout.parts")}

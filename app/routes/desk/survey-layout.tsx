@@ -36,9 +36,17 @@ export default function SurveyLayout({ loaderData, params }: Route.ComponentProp
 						{ to: href("/desk/surveys/:surveyId/mailing", params), label: t("survey.mailing") },
 					]),
 					{ to: href("/desk/surveys/:surveyId/answered", params), label: t("answered:tabs.rates") },
-					{ to: href("/desk/surveys/:surveyId/calls", params), label: t("answered:tabs.calls") },
+					{
+						to: href("/desk/surveys/:surveyId/calls", params),
+						label: t("answered:tabs.calls"),
+						also: `${href("/desk/surveys/:surveyId", params)}/enter`,
+					},
 					{ to: href("/desk/surveys/:surveyId/responses", params), label: t("survey.responses") },
-					{ to: href("/desk/surveys/:surveyId/checks", params), label: t("checks:tab") },
+					{
+						to: href("/desk/surveys/:surveyId/checks", params),
+						label: t("checks:tab"),
+						also: href("/desk/surveys/:surveyId/coding", params),
+					},
 					{ to: href("/desk/surveys/:surveyId/estimates", params), label: t("survey.estimates") },
 					...onlyReal([{ to: href("/desk/surveys/:surveyId/release", params), label: t("survey.release") }]),
 				]}
