@@ -17,7 +17,7 @@ export const SurveyDraft = ClosingForm.extend({
 	/** Of a ready form, or of one that an associate made; whether there is such a form, the writing function checks. */
 	formKey: z.string({ error: "choice_wrong" }).max(80, "choice_wrong"),
 	season: z.coerce.number({ error: "empty" }).int("not_whole").min(2000, "season_wrong").max(2100, "season_wrong"),
-	/** Left empty, a survey is called as its form is. */
+	/** Both left empty, a survey is called as its form is; one alone, the writing function refuses. */
 	titleEn: z.string().trim().max(120, "too_long").optional(),
 	titleEs: z.string().trim().max(120, "too_long").optional(),
 	crops: several(z.string().max(40, "choice_wrong")),

@@ -136,6 +136,9 @@ export async function createSurvey(trx: Trx, viewer: Associate, draft: SurveyDra
 		problems.push({ field: "states", code: "choice_wrong" });
 	const closing = await readClosing(trx, draft, now);
 	if ("problem" in closing) problems.push(closing.problem);
+	// A title in one language alone would stand beside the form's in the other: two names for one survey.
+	if (draft.titleEn && !draft.titleEs) problems.push({ field: "titleEs", code: "empty" });
+	if (draft.titleEs && !draft.titleEn) problems.push({ field: "titleEn", code: "empty" });
 	const form = await findFormToAsk(trx, draft.formKey);
 	if (!form) problems.push({ field: "formKey", code: "choice_wrong" });
 	if (problems.length > 0 || "problem" in closing || !form) return { problems };
