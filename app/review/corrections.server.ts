@@ -1,5 +1,6 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
+import type { Associate } from "#app/auth/viewer.ts";
 import type { Act, Correction } from "./reviewed-answers.ts";
 
 /** A decision as it was kept, with who made it. */
@@ -26,6 +27,29 @@ export async function listCorrections(trx: Trx, responseId: string): Promise<Kep
 /** Every decision about a response, newest first. */
 export async function listCorrectionHistory(trx: Trx, responseId: string): Promise<KeptCorrection[]> {
 	return selectCorrections(trx).where("c.response_id", "=", responseId).orderBy("c.number", "desc").execute();
+}
+
+/** Whether the newest decision about an answer is the viewer's own, and one that the viewer's page did not know of. */
+export async function decidedElsewhere(
+	trx: Trx,
+	viewer: Associate,
+	{
+		responseId,
+		questionKey,
+		plantingId,
+		seen,
+	}: { responseId: string; questionKey: string; plantingId: string | null; seen: number },
+): Promise<boolean> {
+	const newest = await trx
+		.selectFrom("collect.correction")
+		.where("response_id", "=", responseId)
+		.where("question_key", "=", questionKey)
+		.where("planting_id", "is not distinct from", plantingId)
+		.orderBy("number", "desc")
+		.limit(1)
+		.select(["number", "made_by"])
+		.executeTakeFirst();
+	return newest !== undefined && newest.number !== seen && newest.made_by === viewer.personId;
 }
 
 function selectCorrections(trx: Trx) {

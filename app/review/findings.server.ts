@@ -51,6 +51,18 @@ export async function listSteps(trx: Trx, findingId: string) {
 		.execute();
 }
 
+/** Whether what was done last about a finding was the viewer's own doing: in another window, where this one knew nothing of it. */
+export async function didLastStep(trx: Trx, viewer: Associate, findingId: string): Promise<boolean> {
+	const last = await trx
+		.selectFrom("collect.edit_finding_step")
+		.where("edit_finding_id", "=", findingId)
+		.orderBy("number", "desc")
+		.limit(1)
+		.select("person_id")
+		.executeTakeFirst();
+	return last?.person_id === viewer.personId;
+}
+
 /** The one place that says whose findings an associate can see. */
 function selectFindings(trx: Trx, viewer: Associate, surveyId: string) {
 	return (

@@ -1,6 +1,6 @@
 import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
-import { FindingsQuery } from "#app/review/findings.schema.ts";
+import { type Decision, FindingsQuery } from "#app/review/findings.schema.ts";
 import { countOpenFindings, listFindings } from "#app/review/findings.server.ts";
 import { type Closing, confirmChosen, decideFinding, undoBatch } from "#app/routes/desk/parts/checks/decide.server.ts";
 import { takeDecision } from "#app/routes/desk/parts/checks/take-decision.server.ts";
@@ -39,6 +39,17 @@ async function expectTalliesKept(surveyId: string) {
 	});
 	expectSameTallies(kept!, rebuilt!);
 	expect(kept!.length).toBeGreaterThan(0);
+}
+
+/** A second check that finds the same answer odd. */
+async function secondFinding(surveyId: string, operationId: string, findingId: string): Promise<FindingRow> {
+	await owner.query(
+		`insert into collect.edit_finding (response_id, check_kind, check_key, question_key, planting_id, crop_key, about, about_key)
+		select response_id, 'ratio_to_last', 'ratio', question_key, planting_id, crop_key, about, about_key
+		from collect.edit_finding where edit_finding_id = $1`,
+		[findingId],
+	);
+	return (await findingsOf(owner, surveyId, operationId)).find(({ check_key }) => check_key === "ratio")!;
 }
 
 describe("a correction", () => {
@@ -195,18 +206,27 @@ describe("two at once", () => {
 	test("of one answer by two findings: the second is told too", async () => {
 		const { surveyId, operationId, findingOf } = await oddSurvey(owner, iowa);
 		const finding = findingOf("harvested");
-		// A second check found the same answer odd.
-		await owner.query(
-			`insert into collect.edit_finding (response_id, check_kind, check_key, question_key, planting_id, crop_key, about, about_key)
-			select response_id, 'ratio_to_last', 'ratio', question_key, planting_id, crop_key, about, about_key
-			from collect.edit_finding where edit_finding_id = $1`,
-			[finding.edit_finding_id],
-		);
-		const second = (await findingsOf(owner, surveyId, operationId)).find(({ check_key }) => check_key === "ratio")!;
+		const second = await secondFinding(surveyId, operationId, finding.edit_finding_id);
 		expect(await decide(iowa, surveyId, finding, corrected(3000))).toBe("done");
 		expect(await decide(other, surveyId, second, corrected(3500))).toBe("changed");
 		expect(await decide(other, surveyId, second, setAside)).toBe("changed");
 		expect(await factOf(owner, surveyId, operationId, "base.harvested_lb")).toMatchObject({ y: 3000, setAside: false });
+	});
+
+	test("a second window of the same person is told that it was they themselves, also by another finding", async () => {
+		const { surveyId, operationId, findingOf } = await oddSurvey(owner, iowa);
+		const { edit_finding_id: findingId } = findingOf("harvested");
+		const { edit_finding_id: otherId } = await secondFinding(surveyId, operationId, findingId);
+		const ownSetAside: Decision = { act: "set_aside", version: 0, at: 0, seen: 0, reason: "Cannot be reached" };
+		const put = (viewer: Associate, id: string) =>
+			asDesk(viewer, (trx) =>
+				takeDecision(trx, viewer, { surveyId, findingId: id }, ownSetAside, { values: {}, language: "en" }),
+			);
+		expect(await decide(iowa, surveyId, findingOf("harvested"), corrected(3000))).toBe("done");
+		expect(await put(iowa, findingId)).toEqual({ outcome: "changed_by_you" });
+		expect(await put(other, findingId)).toEqual({ outcome: "changed" });
+		expect(await put(iowa, otherId)).toEqual({ outcome: "changed_by_you" });
+		expect(await put(other, otherId)).toEqual({ outcome: "changed" });
 	});
 
 	test("a press that is repeated says the same, and is kept once", async () => {

@@ -77,6 +77,14 @@ describe("words for another cause", () => {
 		expect(await count(owner, kept, [surveyId])).toBe(1);
 	});
 
+	test("coded again from a second window of the same person are told so", async () => {
+		const { surveyId } = await lostToOther("hail and deer");
+		const [row] = await rowsOf(iowa, surveyId);
+		expect(await code(iowa, surveyId, row!, "cause_pests")).toBe("coded");
+		expect(await code(iowa, surveyId, row!, "cause_hail_wind")).toBe("changed_by_you");
+		expect(await code(other, surveyId, row!, "cause_hail_wind")).toBe("changed");
+	});
+
 	test("take no code that the form has not, and are not found from another state", async () => {
 		const { surveyId } = await lostToOther("raccoons");
 		await owner.query("insert into collect.survey_state values ($1, '55')", [surveyId]);

@@ -117,7 +117,7 @@ function Refused({ why, sent }: { why: string; sent: { values: Record<string, st
 	return (
 		<NotDone tone="attention" answer={sent} title={t(`refused.${why}.title`)}>
 			<p>{t(`refused.${why}.body`)}</p>
-			{why === "changed" && <TypedBefore values={sent.values} />}
+			{(why === "changed" || why === "changed_by_you") && <TypedBefore values={sent.values} />}
 		</NotDone>
 	);
 }

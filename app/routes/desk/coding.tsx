@@ -32,7 +32,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	if (!form.ok) throw refusal("form_not_understood");
 	const outcome = await desk.transaction((trx) => giveCode(trx, desk.viewer, params.surveyId, form.value));
 	if (outcome === "not_found") throw refusal("response_not_found");
-	if (outcome === "changed") return data({ changed: true }, { status: 409 });
+	if (outcome === "changed" || outcome === "changed_by_you") return data({ refused: outcome }, { status: 409 });
 	context.get(sessionContext).flash("toast", { key: `checks:toast.${outcome}` });
 	const { search } = new URL(request.url);
 	return redirect(`${href("/desk/surveys/:surveyId/coding", params)}${search}`, 303);
@@ -56,9 +56,9 @@ export default function CodingPage({ loaderData, actionData, params }: Route.Com
 			</p>
 			<Section title={t("coding.title")}>
 				<p className="max-w-prose">{t("coding.lead")}</p>
-				{actionData?.changed && (
-					<NotDone tone="attention" answer={actionData} title={t("coding.changed.title")}>
-						{t("coding.changed.body")}
+				{actionData && (
+					<NotDone tone="attention" answer={actionData} title={t(`coding.${actionData.refused}.title`)}>
+						{t(`coding.${actionData.refused}.body`)}
 					</NotDone>
 				)}
 				<nav aria-label={t("coding.show")} className="no-print my-4 flex flex-wrap gap-x-6">

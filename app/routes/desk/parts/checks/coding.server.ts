@@ -7,6 +7,7 @@ import { findSurvey, isId } from "#app/collect/surveys.server.ts";
 import { besideParts } from "#app/lib/page-by-key.ts";
 import { codedQuestionsOf, codesOf, suggestCodes } from "#app/review/coding.ts";
 import { countToldInWords, listToldInWords, listWordsOfResponse } from "#app/review/coding.server.ts";
+import { decidedElsewhere } from "#app/review/corrections.server.ts";
 import { addCorrection, lockForDecision } from "#app/review/decisions.server.ts";
 import { takeIn } from "./decide.server.ts";
 
@@ -55,7 +56,8 @@ async function readQuestions(trx: Trx, viewer: Associate, surveyId: string) {
 
 /**
  * Gives words a code, or says that they stay something else; facts and tallies follow at once. Sent twice, it says the same.
- * @returns `changed` where somebody else coded them, or the grower wrote anew, after the page was opened.
+ * @returns `changed` where somebody else coded them, or the grower wrote anew, after the page was opened; `changed_by_you` where
+ * the same person did in another window.
  */
 export async function giveCode(
 	trx: Trx,
@@ -68,7 +70,7 @@ export async function giveCode(
 		seen,
 		code,
 	}: Omit<Coding, "plantingId"> & { plantingId?: string | null },
-): Promise<"coded" | "uncoded" | "changed" | "not_found"> {
+): Promise<"coded" | "uncoded" | "changed" | "changed_by_you" | "not_found"> {
 	if (!isId(surveyId)) return "not_found";
 	// The viewer's scope holds no row of another state, so this waits for none; what is read then nobody changes meanwhile.
 	await lockForDecision(trx, surveyId, responseId);
@@ -83,7 +85,10 @@ export async function giveCode(
 	const codes = code === undefined ? [] : [code];
 	const outcome = code === undefined ? "uncoded" : "coded";
 	if (JSON.stringify(held.codes) === JSON.stringify(codes)) return outcome;
-	if (held.seen !== seen) return "changed";
+	if (held.seen !== seen) {
+		const isOwn = await decidedElsewhere(trx, viewer, { responseId, questionKey, plantingId, seen });
+		return isOwn ? "changed_by_you" : "changed";
+	}
 	await addCorrection(trx, viewer, {
 		responseId,
 		questionKey,

@@ -3,8 +3,10 @@ import type { Associate } from "#app/auth/viewer.ts";
 import type { StepValues } from "#app/collect/posted.ts";
 import { readQuestion } from "#app/collect/read-question.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
+import { decidedElsewhere } from "#app/review/corrections.server.ts";
 import type { Decision } from "#app/review/findings.schema.ts";
-import type { Correction } from "#app/review/reviewed-answers.ts";
+import { didLastStep, findFinding } from "#app/review/findings.server.ts";
+import { type Correction, placeOf } from "#app/review/reviewed-answers.ts";
 import { todayIn } from "../../../grower/parts/answering.server.ts";
 import { askGrower, type AskRefused } from "./ask.server.ts";
 import { type Decided, decideFinding, type FindingPlace } from "./decide.server.ts";
@@ -12,12 +14,34 @@ import { type FindingView, viewFinding } from "./finding-view.server.ts";
 import { mustBeAnswered } from "./must-be-answered.ts";
 
 type Taken =
-	| { outcome: Decided | AskRefused }
+	| { outcome: Decided | AskRefused | "changed_by_you" }
 	| { outcome: "problems"; problems: Problem[] }
 	| { outcome: "preview"; moved: FindingView["moved"] };
 
 /** Does what was sent with a finding, or tells what it would come to. @param values every field that was sent. */
 export async function takeDecision(
+	trx: Trx,
+	viewer: Associate,
+	place: FindingPlace,
+	decision: Decision,
+	{ values, language }: { values: StepValues; language: "en" | "es" },
+): Promise<Taken> {
+	const taken = await takeFrom(trx, viewer, place, decision, { values, language });
+	const isOwn = taken.outcome === "changed" && (await wasOwnWindow(trx, viewer, place, decision));
+	return isOwn ? { outcome: "changed_by_you" } : taken;
+}
+
+/** Whether the page that sent this was overtaken by the same person's own doing in another window. */
+async function wasOwnWindow(trx: Trx, viewer: Associate, { surveyId, findingId }: FindingPlace, decision: Decision) {
+	const finding = await findFinding(trx, viewer, surveyId, findingId);
+	if (!finding) return false;
+	if (finding.version !== decision.version) return didLastStep(trx, viewer, findingId);
+	const about = "at" in decision ? finding.about[decision.at] : undefined;
+	if (!about || !("seen" in decision)) return false;
+	return decidedElsewhere(trx, viewer, { ...placeOf(about), responseId: finding.responseId, seen: decision.seen });
+}
+
+async function takeFrom(
 	trx: Trx,
 	viewer: Associate,
 	place: FindingPlace,
