@@ -132,10 +132,11 @@ test("what was planned is held against what the newest release tells", async () 
 	]);
 });
 
+const makeTitled = (titles: { titleEn?: string; titleEs?: string }) =>
+	asDesk(iowa, (trx) => createSurvey(trx, iowa, draftOf(["19"], { titleEn: "", titleEs: "", ...titles })));
+
 test("a title in one language alone is refused beside the other's field", async () => {
-	const make = (titles: { titleEn?: string; titleEs?: string }) =>
-		asDesk(iowa, (trx) => createSurvey(trx, iowa, draftOf(["19"], { titleEn: "", titleEs: "", ...titles })));
-	expect(await make({ titleEn: "Frost" })).toEqual({ problems: [{ field: "titleEs", code: "empty" }] });
-	expect(await make({ titleEs: "Helada" })).toEqual({ problems: [{ field: "titleEn", code: "empty" }] });
-	expect(await make({})).toMatchObject({ surveyId: expect.any(String) });
+	expect(await makeTitled({ titleEn: "Frost" })).toEqual({ problems: [{ field: "titleEs", code: "empty" }] });
+	expect(await makeTitled({ titleEs: "Helada" })).toEqual({ problems: [{ field: "titleEn", code: "empty" }] });
+	expect(await makeTitled({})).toMatchObject({ surveyId: expect.any(String) });
 });
