@@ -319,6 +319,7 @@ export interface CollectMailing {
   queued_at: Generated<Timestamp>;
   queued_by: string | null;
   sent_at: Timestamp | null;
+  state_fips: Generated<string>;
   survey_id: string;
   tried_at: Timestamp | null;
   wave: Generated<number>;

@@ -2,7 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
-import { answered, awaited, invited, lastWave, queueWave, wasInvited } from "./mail-waves.server.ts";
+import { conditionsOfAll, lastWave, queueWave } from "./mail-waves.server.ts";
 import { findSurvey } from "./surveys.server.ts";
 
 /**
@@ -11,19 +11,28 @@ import { findSurvey } from "./surveys.server.ts";
  * @param only of these operations alone.
  */
 export async function countMailings(trx: Trx, viewer: Associate, surveyId: string, only?: string[]) {
-	const row = await trx
+	const { hasSent, isAwaited, isInvited, invitationWentOut } = conditionsOfAll(surveyId);
+	const told = trx
 		.selectFrom("collect.frame_operation as f")
 		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
 		.where("f.survey_id", "=", surveyId)
 		.where("f.state_fips", "in", viewer.stateFips)
 		.$if(only !== undefined, (rows) => rows.where(sql<boolean>`f.operation_id = any (${only}::uuid[])`))
 		.select([
-			sql<number>`count(*) filter (where ${awaited} and not ${invited})`.as("toInvite"),
-			sql<number>`count(*) filter (where ${awaited} and ${wasInvited})`.as("toRemind"),
-			sql<number>`count(*) filter (where ${invited})`.as("invited"),
-			sql<number>`count(*) filter (where coalesce(o.email, '') = '' and o.left_at is null and not ${answered})`.as(
-				"withoutAddress",
-			),
+			isAwaited.as("is_awaited"),
+			isInvited.as("is_invited"),
+			invitationWentOut.as("went_out"),
+			sql<boolean>`(coalesce(o.email, '') = '' and o.left_at is null and not ${hasSent})`.as("without_address"),
+		])
+		// Keeps each of them from being asked as often as it is counted by.
+		.offset(0);
+	const row = await trx
+		.selectFrom(told.as("t"))
+		.select([
+			sql<number>`count(*) filter (where is_awaited and not is_invited)`.as("toInvite"),
+			sql<number>`count(*) filter (where is_awaited and went_out)`.as("toRemind"),
+			sql<number>`count(*) filter (where is_invited)`.as("invited"),
+			sql<number>`count(*) filter (where without_address)`.as("withoutAddress"),
 		])
 		.executeTakeFirstOrThrow();
 	return { ...row, reminderWave: (await lastWave(trx, surveyId, "reminder")) + 1 };
