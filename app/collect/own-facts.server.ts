@@ -3,7 +3,13 @@ import type { Grower } from "#app/auth/viewer.ts";
 import { FormDefinition, type Measure, type Words } from "./form.ts";
 import { isId } from "./surveys.server.ts";
 
-export type OwnFigure = { measureKey: string; cropKey: string; value: number; kind: Measure["kind"] };
+export type OwnFigure = {
+	measureKey: string;
+	cropKey: string;
+	value: number;
+	/** Whether something was so at the operation, which an area tells as the share of its operations. */
+	yesOrNo: boolean;
+};
 export type OwnFacts = { operationId: string; name: string; countyFips: string; figures: OwnFigure[] };
 
 /**
@@ -54,11 +60,11 @@ async function listFigures(trx: Trx, surveyId: string, operationId: string, meas
 		.execute();
 	return measures
 		.filter(({ kind, base }) => kind !== "total" && !base)
-		.flatMap(({ key, kind, scale }) =>
+		.flatMap(({ key, numerator, scale }) =>
 			facts.flatMap(({ measure_key, crop_key, y, x }): OwnFigure[] =>
 				measure_key !== key || y === null || !x
 					? []
-					: [{ measureKey: key, cropKey: crop_key, kind, value: (y / x) * scale }],
+					: [{ measureKey: key, cropKey: crop_key, yesOrNo: "indicator" in numerator, value: (y / x) * scale }],
 			),
 		);
 }

@@ -74,7 +74,7 @@ test("own figures are told in the measure's unit, and the release once there is 
 			{
 				operationId: place.operationId,
 				countyFips: "19103",
-				figures: [{ measureKey: "crop_loss", cropKey: "apple", kind: "ratio", value: 25 }],
+				figures: [{ measureKey: "crop_loss", cropKey: "apple", yesOrNo: false, value: 25 }],
 			},
 		],
 	});
@@ -84,6 +84,26 @@ test("own figures are told in the measure's unit, and the release once there is 
 		[place.surveyId, iowa.personId, releaseId],
 	);
 	expect((await own())?.releaseId).toBe(releaseId);
+});
+
+test("a share of a crop is told as a figure, and only what was so or not so as yes or no", async () => {
+	const { place, grower } = await answered();
+	for (const [measure, y, x] of [
+		["freeze_loss", 20, 100],
+		["total_loss", 1, 1],
+	])
+		await owner.query(
+			`insert into collect.fact select survey_id, $3, 'apple', operation_id, owner_id, county_fips, state_fips, stratum_key, $4, $5
+			from collect.frame_operation where survey_id = $1 and operation_id = $2`,
+			[place.surveyId, place.operationId, measure, y, x],
+		);
+	const own = await asGrower(grower, (trx) => findOwnFacts(trx, grower, place.surveyId));
+	const told = own?.operations[0]?.figures.map(({ measureKey, yesOrNo, value }) => [measureKey, yesOrNo, value]);
+	expect(told).toEqual([
+		["crop_loss", false, 25],
+		["freeze_loss", false, 20],
+		["total_loss", true, 100],
+	]);
 });
 
 test("another grower finds nothing, nor does whoever came by a link", async () => {

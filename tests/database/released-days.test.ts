@@ -144,7 +144,7 @@ test("a grower's own day stands beside the county's", async () => {
 	const grower = growerOf(growers[0]!);
 	const own = await asGrower(grower, (trx) => findOwnFacts(trx, grower, surveyId));
 	expect(own).toMatchObject({ season: 2024, releaseId: release.releaseId });
-	expect(own?.operations[0]?.figures).toEqual([{ ...bloom, kind: "day", value: 115 }]);
+	expect(own?.operations[0]?.figures).toEqual([{ ...bloom, yesOrNo: false, value: 115 }]);
 	const beside = await findComparison(release.releaseId, "19001", [bloom]);
 	expect(beside?.cells[comparisonKey(bloom)]).toMatchObject({ areaKey: "19001", ...county });
 	expect(beside?.measures.find(({ key }) => key === "first_bloom")).toMatchObject({ unit: "day", season: 2024 });

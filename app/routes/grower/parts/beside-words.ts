@@ -24,7 +24,7 @@ export function useBesideWords() {
 		};
 		if (lower === null || upper === null) return t("compare.said.alone", figures);
 		const said = { ...figures, ...format.ends(lower, upper, measure) };
-		if (own.kind === "proportion") return t(`compare.said.${own.value > 0 ? "yes" : "no"}`, said);
+		if (own.yesOrNo) return t(`compare.said.${own.value > 0 ? "yes" : "no"}`, said);
 		const shown = (value: number) => Number(value.toFixed(measure.decimals));
 		const end = shown(own.value) > shown(upper) ? "above" : shown(own.value) < shown(lower) ? "below" : "within";
 		if (measure.unit === "day" && end !== "within")

@@ -19,7 +19,7 @@ async function drawn(value: number, more: Partial<Operation> = {}, language = "e
 		name: "Plum Hollow",
 		countyFips: "19113",
 		measures: [measure],
-		figures: [{ measureKey: "crop_loss", cropKey: "apple", kind: "ratio", value }],
+		figures: [{ measureKey: "crop_loss", cropKey: "apple", yesOrNo: false, value }],
 		cells: { "crop_loss|apple": cell },
 		...more,
 	};

@@ -50,7 +50,7 @@ function Pair({ own, measure, cell }: { own: OwnFigure; measure: ReleaseMeasure;
 	return (
 		<>
 			{sentence && <p className="mt-1 font-bold">{sentence}</p>}
-			{cell && sentence && own.kind !== "proportion" && (
+			{cell && sentence && !own.yesOrNo && (
 				<div className="mt-2">
 					<BesideChart
 						own={{ label: t("compare.you"), value: own.value }}
@@ -64,9 +64,7 @@ function Pair({ own, measure, cell }: { own: OwnFigure; measure: ReleaseMeasure;
 				<div>
 					<dt className="text-base text-quiet">{t("compare.you")}</dt>
 					<dd className="font-bold">
-						{own.kind === "proportion"
-							? t(own.value > 0 ? "compare.yes" : "compare.no")
-							: format.figure(own.value, measure)}
+						{own.yesOrNo ? t(own.value > 0 ? "compare.yes" : "compare.no") : format.figure(own.value, measure)}
 					</dd>
 				</div>
 				<div>
