@@ -1,5 +1,5 @@
 import type { AuditFailure, AuditResult } from "./audit.ts";
-import type { Target } from "./audit-owners.ts";
+import { holdsByOwner, type KnownPart, type Target, tryOwners } from "./audit-owners.ts";
 import { intervalsOf, PointSearch } from "./audit-search.ts";
 import { type AuditBlock, blocksOf } from "./audit-system.ts";
 import { roomOf, ROUNDING } from "./audit-widths.ts";
@@ -24,6 +24,8 @@ export interface Draft {
 	rules: ProtectionRules;
 	own: readonly OwnCell[];
 	told: Told;
+	/** Whether owners use what they know. */
+	ownersAttack: boolean;
 	/** by cell: what withholding it loses */
 	loss: readonly number[];
 }
@@ -34,16 +36,17 @@ export interface OthersFound {
 	runs: number;
 }
 
-/** Something that must stay uncertain, and the cell that it is. */
-type Aim = Target & { cellKey: string };
+/** Something that must stay uncertain, and the cell that it is; with the owners who find it too closely. */
+type Aim = Target & { cellKey: string; objectors?: readonly string[] };
 
 /**
  * A draft and the releases of other surveys of the season as one linear program for each quantity that they share: all
  * lines of all of them, what each shows, and a cell in which nobody's amount differs as one unknown. So sums over cells
  * that both withhold, of which each release tells another, are known to whoever keeps both. Asked are the levels of what
  * the draft and the others withhold for its own sake, cut to the room that the others leave with nothing of the draft shown.
- * Not covered: what owners know besides, the sums of a line's withheld cells, earlier releases of the draft's own survey, and
- * districts that were drawn otherwise for the other survey, whose lines are taken as they are drawn here.
+ * Each owner is tried too, with the own answers to all of these surveys.
+ * Not covered: the sums of a line's withheld cells, earlier releases of the draft's own survey, and districts that were
+ * drawn otherwise for the other survey, whose lines are taken as they are drawn here.
  */
 export class BesideOthers {
 	readonly #joint: JointTables[];
@@ -88,20 +91,46 @@ export class BesideOthers {
 			block.unknowns.some((unknown) => system.elsewhere.has(unknown)),
 		);
 		const { rooms, tried, runs } = this.#roomsOf(system, blocks, aims);
-		const short = aims.filter((aim) => (rooms.get(aim.unknown) ?? Infinity) < 1 - ROUNDING);
-		if (short.length === 0) return { quantity: joint.tables[0]!.quantity.key, narrow: [], tried, runs };
+		const { key: quantity } = joint.tables[0]!.quantity;
+		const isShort = ({ unknown }: Aim) => (rooms.get(unknown) ?? Infinity) < 1 - ROUNDING;
+		const known = aims.filter((aim) => !isShort(aim));
+		const owned = this.#foundByOwners(joint, system, blocks, known);
+		const short = [...aims.filter(isShort), ...owned.found];
+		if (short.length === 0) return { quantity, narrow: [], tried: tried + owned.tried, runs: runs + owned.runs };
 		const open = joint.system(() => false, this.draft.told);
+		const openBlocks = blocksOf(open.unknowns, open.relations);
 		const same = short.map((aim) => {
 			const [table, cell] = system.sources[aim.unknown]!;
 			return { ...aim, unknown: open.unknownOf(table, cell)! };
 		});
-		const before = this.#roomsOf(open, blocksOf(open.unknowns, open.relations), same);
+		const before = this.#roomsOf(open, openBlocks, same);
+		const byOwners = same.filter(({ objectors }) => objectors);
+		const standing = new Set(
+			this.#foundByOwners(joint, open, openBlocks, byOwners).found.map(({ unknown }) => unknown),
+		);
 		const narrow = short.flatMap((aim, at): Aim[] => {
-			const left = Math.min(1, LEFT * (before.rooms.get(same[at]!.unknown) ?? Infinity));
+			const as = same[at]!;
+			if (aim.objectors) return standing.has(as.unknown) ? [] : [as];
+			const left = Math.min(1, LEFT * (before.rooms.get(as.unknown) ?? Infinity));
 			if (left < STILL || rooms.get(aim.unknown)! >= left * (1 - ROUNDING)) return [];
-			return [{ ...same[at]!, up: aim.up * left, down: aim.down * left }];
+			return [{ ...as, up: aim.up * left, down: aim.down * left }];
 		});
-		return { quantity: joint.tables[0]!.quantity.key, narrow, tried, runs: runs + before.runs };
+		return { quantity, narrow, tried: tried + owned.tried, runs: runs + before.runs + owned.runs };
+	}
+
+	/** Aims that some owner finds too closely by what the own answers tell. */
+	#foundByOwners(joint: JointTables, { sources }: JointSystem, blocks: readonly AuditBlock[], aims: readonly Aim[]) {
+		if (!this.draft.ownersAttack || aims.length === 0) return { found: [], tried: 0, runs: 0 };
+		const found = blocks.map((block) =>
+			tryOwners(this.solver, block, aims, (unknown) => joint.partsAt(...sources[unknown]!)),
+		);
+		return {
+			found: found.flatMap(({ failed, objectors }) =>
+				aims.filter(({ unknown }) => failed.includes(unknown)).map((aim): Aim => ({ ...aim, objectors })),
+			),
+			tried: found.reduce((sum, one) => sum + one.tried, 0),
+			runs: found.reduce((sum, one) => sum + one.runs, 0),
+		};
 	}
 
 	/** How much room each aim has, in multiples of what is asked. */
@@ -134,17 +163,28 @@ export class BesideOthers {
 				const cell = shownCell(unknown);
 				return cell === undefined ? 0 : (DEAREST * this.draft.loss[cell]!) / dearest;
 			});
+			const parts = block.unknowns.map((unknown): readonly KnownPart[] => joint.partsAt(...sources[unknown]!));
+			const holds = holdsByOwner(block, parts);
 			const search = new PointSearch(this.solver, block, costs);
+			const withhold = (column: number) => {
+				const cell = shownCell(block.unknowns[column]!);
+				if (cell === undefined) return;
+				more.add(cell);
+				search.cheapen(column);
+			};
 			try {
-				for (const { unknown, up, down } of aims) {
+				for (const { unknown, up, down, objectors = [] } of aims) {
+					const place = block.unknowns.indexOf(unknown);
 					for (const side of [up, -down].filter((one) => one !== 0)) {
-						const point = search.reach(block.unknowns.indexOf(unknown), side * MARGIN) ?? [];
-						point.forEach((distance, column) => {
-							const cell = shownCell(block.unknowns[column]!);
-							if (cell === undefined || Math.abs(distance) <= STILL * block.scale) return;
-							more.add(cell);
-							search.cheapen(column);
-						});
+						for (const owner of [undefined, ...objectors]) {
+							const part = parts[place]!.find((one) => one.owner === owner);
+							if (part && (part.alone || side < 0)) continue;
+							const known = owner === undefined ? [] : holds.get(owner);
+							const point = search.reach(place, side * MARGIN, known) ?? [];
+							point.forEach((distance, column) => {
+								if (Math.abs(distance) > STILL * block.scale) withhold(column);
+							});
+						}
 					}
 				}
 			} finally {

@@ -92,7 +92,8 @@ function objecting(block: AuditBlock, parts: readonly (readonly KnownPart[])[], 
 	return owners;
 }
 
-function holdsByOwner(block: AuditBlock, parts: readonly (readonly KnownPart[])[]): Map<string, Hold[]> {
+/** By owner, all that the own answers tell of a block's columns. */
+export function holdsByOwner(block: AuditBlock, parts: readonly (readonly KnownPart[])[]): Map<string, Hold[]> {
 	const holds = new Map<string, Hold[]>();
 	parts.forEach((list, column) => {
 		for (const { owner, amount, alone } of list) {

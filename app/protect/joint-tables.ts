@@ -1,8 +1,10 @@
 import { linesOf, type Relation, relationsOf, type Unknown } from "./audit-system.ts";
 import { REGION } from "./codes.ts";
+import type { KnownPart } from "./audit-owners.ts";
 import type { Holding } from "./holdings.ts";
 import { tableOfHoldings } from "./holdings-table.ts";
 import { type OwnCell, ownCells } from "./levels.ts";
+import { partsOf } from "./parts.ts";
 import type { ProtectionRules } from "./rules.ts";
 import { amountsOf, aroundWithin, type OtherSurvey, sameCells, type SharedReleases } from "./shared-cells.ts";
 import type { ProtectionTable, Quantity } from "./table.ts";
@@ -16,6 +18,7 @@ interface JointTable {
 	quantity: Quantity;
 	lines: ReturnType<typeof linesOf>;
 	own: readonly OwnCell[];
+	parts: ReturnType<typeof partsOf>;
 	/** Whether the cell at this position is known, whatever the draft withholds. */
 	isKnown: (cell: number) => boolean;
 	/** By position: the table and position where the very same value was met first. */
@@ -41,7 +44,7 @@ export class JointTables {
 		{ areas, holdings, others }: SharedReleases,
 	) {
 		const { table, quantity, own, told, rules } = draft;
-		const here = { table, quantity, lines: linesOf(table), own };
+		const here = { table, quantity, lines: linesOf(table), own, parts: partsOf(table) };
 		const none = (cell: number) => table.cells[cell]!.owners === 0 || isTold(told, quantity, cell);
 		this.tables = [{ ...here, isKnown: none, firstOf: (cell) => [0, cell] }];
 		const around = aroundWithin(areas);
@@ -67,10 +70,21 @@ export class JointTables {
 				quantity: madeQuantity,
 				lines: linesOf(made),
 				own: ownCells(made, rules),
+				parts: partsOf(made),
 				isKnown,
 				firstOf,
 			});
 		}
+	}
+
+	/** What each owner knows of a cell, the largest part first. */
+	partsAt(t: number, cell: number): KnownPart[] {
+		const { table, quantity, parts } = this.tables[t]!;
+		const q = table.quantities.indexOf(quantity);
+		const alone = table.cells[cell]!.owners === 1;
+		return parts(cell)
+			.map(({ owner, amounts }) => ({ owner, amount: amounts[q]!, alone }))
+			.toSorted((a, b) => b.amount - a.amount);
 	}
 
 	/** @param isShown of the draft's own cells */

@@ -160,7 +160,11 @@ export function concludeProtection(
 
 function othersOf(solver: Solver, { table, rules, own, options, loss, releases }: ProtectionPlan): BesideOthers | null {
 	if (!releases || releases.others.length === 0) return null;
-	return new BesideOthers(solver, { table, rules, own, told: options.told ?? {}, loss }, releases);
+	return new BesideOthers(
+		solver,
+		{ table, rules, own, told: options.told ?? {}, ownersAttack: options.ownersAttack, loss },
+		releases,
+	);
 }
 
 /** The audit, with what the draft tells beside earlier releases. */

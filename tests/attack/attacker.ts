@@ -75,9 +75,9 @@ class Attack {
 		});
 	}
 
-	/** How far above and below the truth the aim may lie, for who knows no more than the rows. */
-	room(aim: Aim): [above: number, below: number] {
-		return [this.#push(aim, [], "Maximize") - aim.value, aim.value - this.#push(aim, [], "Minimize")];
+	/** How far above and below the truth the aim may lie. */
+	room(aim: Aim, known: readonly string[] = []): [above: number, below: number] {
+		return [this.#push(aim, known, "Maximize") - aim.value, aim.value - this.#push(aim, known, "Minimize")];
 	}
 
 	#push({ terms }: Aim, known: readonly string[], side: "Maximize" | "Minimize"): number {
@@ -221,6 +221,7 @@ export function attackBeside(
 	{ there, here }: { there: Seen; here: Seen },
 	quantity: Amount,
 	rules: ProtectionRules,
+	{ owners }: { owners: boolean },
 ): { broken: Told[]; tried: number; knownBefore: number } {
 	const rowsOf = ({ cells, shown }: Seen, e: number) =>
 		allKeys
@@ -235,14 +236,29 @@ export function attackBeside(
 	let knownBefore = 0;
 	const both = ["Maximize", "Minimize"] as const;
 	for (const aim of aims) {
-		if (!after.finds({ ...aim, level: 0.98 * aim.level }, [], both)) continue;
-		const [above, below] = before.room(aim);
-		const left = Math.min(aim.level, above, aim.value < aim.level ? aim.level : below);
-		if (after.finds({ ...aim, level: 0.98 * left }, [], both))
-			broken.push({ key: aim.key, quantity, attacker: "who kept the release of another survey" });
-		else knownBefore += 1;
+		for (const { attacker, known, sides } of [
+			{ attacker: "who kept the release of another survey", known: [], sides: both },
+			...(owners ? ownersOf({ there, here }, quantity, aim) : []),
+		]) {
+			if (!after.finds({ ...aim, level: 0.98 * aim.level }, known, sides)) continue;
+			const [above, below] = before.room(aim, known);
+			const left = Math.min(aim.level, above, sides.length === 1 || aim.value < aim.level ? aim.level : below);
+			if (after.finds({ ...aim, level: 0.98 * left }, known, sides)) broken.push({ key: aim.key, quantity, attacker });
+			else knownBefore += 1;
+		}
 	}
 	return { broken, tried: aims.length, knownBefore };
+}
+
+/** Some owners, each with the own answers to both surveys. */
+function ownersOf({ there, here }: { there: Seen; here: Seen }, quantity: Amount, aim: Aim) {
+	return likeliest(here.cells, quantity).flatMap((owner) => {
+		const alone = aim.owners.size === 1 && aim.owners.has(owner);
+		if (alone) return [];
+		const known = [here, there].flatMap(({ cells }, e) => ownKnowledge(cells, owner, quantity, nameIn(e)));
+		const sides = aim.owners.has(owner) ? (["Maximize"] as const) : (["Maximize", "Minimize"] as const);
+		return [{ attacker: `owner ${owner}`, known, sides }];
+	});
 }
 
 /** That a cell is the same in both. */
