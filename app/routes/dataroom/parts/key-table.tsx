@@ -44,7 +44,13 @@ export function KeyTable({ keys, now }: { keys: Key[]; now: Date }) {
 		{
 			key: "scopes",
 			header: t("keys.scopes"),
-			cell: ({ scopes }) => format.list(scopes.map((scope) => t(`keys.scope.${scope}`))),
+			// One a line: a name of one of them has an "and" of its own.
+			cell: ({ scopes }) =>
+				scopes.map((scope) => (
+					<span key={scope} className="block">
+						{t(`keys.scope.${scope}`)}
+					</span>
+				)),
 		},
 		{ key: "expires", header: t("keys.expires"), cell: ({ expiresAt }) => format.dayOf(expiresAt) },
 		{
