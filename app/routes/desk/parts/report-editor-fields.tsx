@@ -102,7 +102,7 @@ export function AreaField({ name, offered, value }: { name: string; offered: Off
 export function PlacePicker({ offered }: { offered: Offered }) {
 	const { t } = useTranslation("public");
 	return (
-		<fieldset className="mb-4 border border-rule bg-sheet px-4 pt-3">
+		<fieldset className="mb-4 min-w-0 border border-rule bg-sheet px-4 pt-3">
 			<legend className="px-1 font-bold">{t("report_editor.pick.title")}</legend>
 			<p className="mb-3 max-w-prose text-sm text-quiet">{t("report_editor.pick.help")}</p>
 			<div className="flex flex-wrap gap-x-4">
