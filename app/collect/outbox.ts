@@ -104,7 +104,8 @@ export function answered(outbox: Outbox, stepKey: string, changeId: string, answ
 		const at = step.unsure.indexOf(changeId);
 		// Of an older change only a yes says something: the newer one then rests on it. A no will be said again of the newer.
 		if (at < 0 || !answer.kept) return step;
-		return { ...step, seen: Math.max(step.seen, answer.version), unsure: step.unsure.slice(at + 1) };
+		// It may have been sent twice, and the second may still make a newer version of it.
+		return { ...step, seen: Math.max(step.seen, answer.version), unsure: step.unsure.slice(at) };
 	});
 }
 
