@@ -2,7 +2,7 @@ import { isDeepStrictEqual } from "node:util";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Grower } from "#app/auth/viewer.ts";
 import { pledgeVersion } from "#app/lib/pledge.ts";
-import type { AnswerPlace } from "./answer-place.server.ts";
+import { type AnswerPlace, findPlace } from "./answer-place.server.ts";
 import { findNewestSubmission, replaceAnswers } from "./answer-rows.server.ts";
 import { endEntryDraft, findEntryDraft, listOtherEntryDrafts } from "./entry-drafts.server.ts";
 import type { Answer } from "./form.ts";
@@ -28,6 +28,13 @@ export async function actFor(trx: Trx, viewer: Associate, place: AnswerPlace): P
 		.where((eb) => eb("state_fips", "=", eb.fn.any(eb.val(viewer.stateFips))))
 		.executeTakeFirst();
 	return asked && { role: "grower", operationIds: [place.operationId], link: null, person: viewer };
+}
+
+/** Whether answers of an operation can be typed in now: while the survey is open, and late where they were begun before. */
+export async function canEnter(trx: Trx, viewer: Associate, place: AnswerPlace): Promise<boolean> {
+	const grower = await actFor(trx, viewer, place);
+	const found = grower && (await findPlace(trx, grower, place));
+	return found !== undefined && (found.isOpen || found.isLate);
 }
 
 /**

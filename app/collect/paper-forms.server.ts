@@ -8,7 +8,7 @@ import type { PaperQuery } from "./paper-forms.schema.ts";
 import { findSurvey, isId } from "./surveys.server.ts";
 import { isWaitedFor } from "./waited-for.server.ts";
 
-/** As many forms as a page of the list holds: each is a sheet or two. */
+/** As many forms as are printed at once: each is a sheet or two, and a printer is fed with no more. */
 const pageSize = 50;
 
 /**
@@ -28,7 +28,7 @@ export async function listPaperForms(
 	const matching = selectForms(trx, viewer, surveyId)
 		.$if(operationId !== undefined, (rows) => rows.where("f.operation_id", "=", operationId!))
 		.$if(operationId === undefined, (rows) => rows.where(isWaitedFor))
-		.$if(operationId === undefined && query.state !== "all", (rows) => rows.where("f.state_fips", "=", query.state))
+		.$if(operationId === undefined && query.area !== "all", (rows) => rows.where(liesIn(query.area)))
 		.$if(operationId === undefined && query.show === "no_address", (rows) =>
 			rows.where(sql<boolean>`coalesce(o.email, '') = ''`),
 		);
@@ -57,6 +57,34 @@ export async function listPaperForms(
 }
 export type PaperForms = NonNullable<Awaited<ReturnType<typeof listPaperForms>>>;
 export type PaperForm = PaperForms["forms"][number];
+
+/** The places of a survey's growers in the viewer's states, with how many of each have not answered; those of none are left out. */
+export function listPaperAreas(trx: Trx, viewer: Associate, surveyId: string) {
+	return trx
+		.selectFrom("collect.frame_count as f")
+		.innerJoin("directory.county as c", "c.county_fips", "f.county_fips")
+		.leftJoin("directory.district as d", "d.district_key", "c.district_key")
+		.where("f.survey_id", "=", surveyId)
+		.where("f.crop_key", "=", "all")
+		.where("f.state_fips", "in", viewer.stateFips)
+		.where("f.disposition", "in", ["not_reached", "undeliverable", "reached", "partial"])
+		.groupBy(["f.state_fips", "c.county_fips", "c.name", "d.district_key", "d.name"])
+		.having(sql`sum(f.operations)`, ">", 0)
+		.orderBy("f.state_fips")
+		.orderBy("c.name")
+		.select(["f.state_fips as stateFips", "c.county_fips as countyFips", "c.name as countyName"])
+		.select(["d.district_key as districtKey", "d.name as districtName"])
+		.select(sql<number>`sum(f.operations)::int`.as("operations"))
+		.execute();
+}
+export type PaperArea = Awaited<ReturnType<typeof listPaperAreas>>[number];
+
+/** A state or county by its code, otherwise a district. */
+function liesIn(area: string) {
+	if (/^\d{2}$/.test(area)) return sql<boolean>`f.state_fips = ${area}`;
+	if (/^\d{5}$/.test(area)) return sql<boolean>`f.county_fips = ${area}`;
+	return sql<boolean>`c.district_key = ${area}`;
+}
 
 const byPlace: Order = {
 	keys: [

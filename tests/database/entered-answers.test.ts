@@ -2,10 +2,10 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { AnswerPlace } from "#app/collect/answer-place.server.ts";
-import { enterAnswers, findEntry, type NewEntry } from "#app/collect/entered-answers.server.ts";
+import { canEnter, enterAnswers, findEntry, type NewEntry } from "#app/collect/entered-answers.server.ts";
 import { keepEntryDraft, listEntryDrafts } from "#app/collect/entry-drafts.server.ts";
 import { PaperQuery } from "#app/collect/paper-forms.schema.ts";
-import { listPaperForms } from "#app/collect/paper-forms.server.ts";
+import { listPaperAreas, listPaperForms } from "#app/collect/paper-forms.server.ts";
 import type { StepValues } from "#app/collect/posted.ts";
 import { readEntry } from "#app/collect/read-entry.ts";
 import { findResponse } from "#app/collect/response-view.server.ts";
@@ -163,8 +163,11 @@ describe("an answer taken by telephone", () => {
 
 	test("is refused once the survey has closed and nothing was begun", async () => {
 		const { place, step } = await askGrower(owner, iowa, { begin: false });
+		const offered = (viewer: Associate) => asDesk(viewer, (trx) => canEnter(trx, viewer, place));
+		expect([await offered(iowa), await offered(wisconsin)]).toEqual([true, false]);
 		await asDesk(iowa, (trx) => closeSurvey(trx, iowa, place.surveyId));
 		await closeLongAgo(owner, place.surveyId);
+		expect(await offered(iowa)).toBe(false);
 		expect(await enter(iowa, place, typedFor(step, 40, 4000, 4000))).toBe("closed");
 		expect(await submissionsOf(place)).toEqual([]);
 	});
@@ -290,6 +293,31 @@ describe("a paper form", () => {
 		expect((await papersOf(iowa, place))!.sheets).toHaveLength(1);
 		expect(await papersOf(wisconsin, place)).toBeUndefined();
 		expect(await papersOf(wisconsin, { surveyId: place.surveyId })).toBeUndefined();
+	});
+
+	test("is printed for one state, district or county, each told with how many have not answered there", async () => {
+		const { place } = await askGrower(owner, iowa, { begin: false, state: "19" });
+		const { surveyId } = place;
+		const areas = await asDesk(iowa, (trx) => listPaperAreas(trx, iowa, surveyId));
+		const total = (await papersOf(iowa, { surveyId }))!.total;
+		expect(areas.reduce((sum, { operations }) => sum + operations, 0)).toBe(total);
+		for (const { countyFips, operations } of areas)
+			expect((await papersOf(iowa, { surveyId }, { area: countyFips }))!.total).toBe(operations);
+		const of = async (area: string) => (await papersOf(iowa, { surveyId }, { area }))!.total;
+		expect([await of("19"), await of("55"), await of("no-such-district"), await of("\0")]).toEqual([
+			total,
+			0,
+			0,
+			total,
+		]);
+		await owner.query(
+			"insert into directory.district (district_key, state_fips, name) values ('ia-paper', '19', 'Paper')",
+		);
+		await owner.query("update directory.county set district_key = 'ia-paper' where county_fips = $1", [
+			areas[0]!.countyFips,
+		]);
+		expect(await of("ia-paper")).toBe(areas[0]!.operations);
+		expect(await asDesk(wisconsin, (trx) => listPaperAreas(trx, wisconsin, surveyId))).toEqual([]);
 	});
 
 	test("has a place for each question that can be answered on paper, and no other", async () => {

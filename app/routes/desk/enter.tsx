@@ -12,6 +12,7 @@ import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { lookAgain } from "#app/lib/look-again.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { readPosted } from "../grower/parts/posted.server.ts";
+import { EntryDraftEnd } from "./parts/entry/entry-draft-end.tsx";
 import { EntryForm } from "./parts/entry/entry-form.tsx";
 import { EntryNotices } from "./parts/entry/entry-notices.tsx";
 import { takeEntry } from "./parts/entry/take-entry.server.ts";
@@ -94,7 +95,10 @@ export default function Enter({ loaderData, actionData, params }: Route.Componen
 			{loaderData.canSend ? (
 				<EntryForm key={params.operationId} shown={loaderData} posted={posted} />
 			) : (
-				<EmptyState title={t("enter.closedTitle")}>{t("enter.closedBody")}</EmptyState>
+				<>
+					<EmptyState title={t("enter.closedTitle")}>{t("enter.closedBody")}</EmptyState>
+					{loaderData.draft && <EntryDraftEnd values={loaderData.values} />}
+				</>
 			)}
 		</Section>
 	);

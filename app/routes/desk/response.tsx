@@ -3,6 +3,7 @@ import { href, Link } from "react-router";
 import { z } from "zod";
 import type { Route } from "./+types/response";
 import { requireAssociate } from "#app/auth/guard.server.ts";
+import { canEnter } from "#app/collect/entered-answers.server.ts";
 import { findResponse } from "#app/collect/response-view.server.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { AnswerList } from "#app/components/answer-list.tsx";
@@ -24,7 +25,13 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const response = await desk.transaction(async (trx) => {
 		const survey = await findSurvey(trx, desk.viewer, params.surveyId);
 		const found = survey && (await findResponse(trx, desk.viewer, params, version));
-		return found && { ...found, decisions: await listResponseDecisions(trx, params.surveyId, params.responseId) };
+		if (!found) return undefined;
+		const { surveyId, responseId } = params;
+		return {
+			...found,
+			canEnter: await canEnter(trx, desk.viewer, { surveyId, operationId: found.operationId }),
+			decisions: await listResponseDecisions(trx, surveyId, responseId),
+		};
 	});
 	if (!response) throw refusal("response_not_found");
 	return response;
@@ -72,9 +79,13 @@ export default function ResponsePage({ loaderData: response, params }: Route.Com
 				/>
 				{response.withdrawnAt === null && (
 					<p className="no-print mt-3">
-						<Link to={href("/desk/surveys/:surveyId/enter/:operationId", { surveyId: params.surveyId, operationId })}>
-							{t("answered:enter.change")}
-						</Link>
+						{response.canEnter ? (
+							<Link to={href("/desk/surveys/:surveyId/enter/:operationId", { surveyId: params.surveyId, operationId })}>
+								{t("answered:enter.change")}
+							</Link>
+						) : (
+							t("answered:enter.changeEnded")
+						)}
 					</p>
 				)}
 				<ResponseDecisions decisions={response.decisions} surveyId={params.surveyId} timeZone={timeZone} />

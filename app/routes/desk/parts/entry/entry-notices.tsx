@@ -6,6 +6,8 @@ import { useFormat } from "#app/i18n/use-format.ts";
 type EntryNoticesProps = {
 	place: { surveyId: string; operationId: string };
 	timeZone: string;
+	/** Whether there are boxes below to type into. */
+	canSend: boolean;
 	isLate: boolean;
 	response: {
 		responseId: string;
@@ -19,7 +21,7 @@ type EntryNoticesProps = {
 };
 
 /** Who else is at these answers, and what was sent in before: said before a word is typed. */
-export function EntryNotices({ place, timeZone, isLate, response, draft, others, posted }: EntryNoticesProps) {
+export function EntryNotices({ place, timeZone, canSend, isLate, response, draft, others, posted }: EntryNoticesProps) {
 	const { t } = useTranslation("answered");
 	const format = useFormat();
 	const moment = (at: Date) => format.moment(at, timeZone);
@@ -47,21 +49,26 @@ export function EntryNotices({ place, timeZone, isLate, response, draft, others,
 			{isLate && <Notice tone="attention">{t("enter.late")}</Notice>}
 			{response?.submittedAt && (
 				<Notice tone="info" title={t("enter.sentTitle")}>
-					<p>{t("enter.sentBody", { moment: moment(response.submittedAt) })}</p>
+					<p>{t(canSend ? "enter.sentBody" : "enter.sentLast", { moment: moment(response.submittedAt) })}</p>
 					<p>{answers}</p>
 				</Notice>
 			)}
-			{response?.keepsUnsent && (
+			{canSend && response?.keepsUnsent && (
 				<Notice tone="attention" title={t("enter.unsentTitle")}>
 					{t("enter.unsentBody")}
 				</Notice>
 			)}
-			{others.map(({ personName, savedAt }) => (
-				<Notice key={personName} tone="attention">
-					{t("enter.other", { name: personName, moment: moment(savedAt) })}
+			{canSend &&
+				others.map(({ personName, savedAt }) => (
+					<Notice key={personName} tone="attention">
+						{t("enter.other", { name: personName, moment: moment(savedAt) })}
+					</Notice>
+				))}
+			{draft && !posted && (
+				<Notice tone="info">
+					{t(canSend ? "enter.draft" : "enter.draftUnsent", { moment: moment(draft.savedAt) })}
 				</Notice>
-			))}
-			{draft && !posted && <Notice tone="info">{t("enter.draft", { moment: moment(draft.savedAt) })}</Notice>}
+			)}
 		</>
 	);
 }

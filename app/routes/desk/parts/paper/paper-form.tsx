@@ -1,11 +1,18 @@
+import { classes } from "#app/components/classes.ts";
 import type { PaperQuestion, PaperSheet } from "./paper-sheet.server.ts";
 
+/** `onPaperOnly`: the screen does without it. */
+type PaperFormSheetProps = { sheet: PaperSheet; size: "letter" | "a4"; onPaperOnly: boolean };
+
 /** One printed form: what it is for, the promise, and the questions with room to write. */
-export function PaperFormSheet({ sheet, size }: { sheet: PaperSheet; size: "letter" | "a4" }) {
+export function PaperFormSheet({ sheet, size, onPaperOnly }: PaperFormSheetProps) {
 	return (
 		<article
 			lang={sheet.language}
-			className={`paper-form paper-${size} mb-10 border border-rule p-6 text-sm print:m-0 print:border-0 print:p-0`}
+			className={classes(
+				`paper-form paper-${size} mb-10 border border-rule p-6 text-sm print:m-0 print:border-0 print:p-0`,
+				onPaperOnly && "hidden print:block",
+			)}
 		>
 			<div className="flex items-start justify-between gap-6 border-b-2 border-line pb-2">
 				<div>
