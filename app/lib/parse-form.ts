@@ -1,5 +1,6 @@
 import { parseWithZod } from "@conform-to/zod/v4";
 import type { z } from "zod";
+import { readableForm } from "./readable-form.ts";
 import type { Words } from "./words.ts";
 
 /** One thing to mend: the field's name and a code whose words are `common:problem.<code>`, unless it brings its own. */
@@ -14,7 +15,7 @@ export type ParsedForm<T> =
  * made from the kind of failure.
  */
 export function parseForm<S extends z.ZodType>(schema: S, form: FormData): ParsedForm<z.infer<S>> {
-	const submission = parseWithZod(form, { schema: schema as never });
+	const submission = parseWithZod(readableForm(form), { schema: schema as never });
 	const values = submission.payload;
 	if (submission.status === "success") return { ok: true, value: submission.value as z.infer<S>, values };
 	const problems = Object.entries(submission.error ?? {}).flatMap(([field, messages]) => {

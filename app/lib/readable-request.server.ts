@@ -6,8 +6,9 @@ const formType = "application/x-www-form-urlencoded";
 const isForm = /^(application\/x-www-form-urlencoded|multipart\/form-data)\b/i;
 
 /**
- * Three kinds of request would be refused before any code of ours sees them, as a page of the server's own or as a fault: an
- * address with a percent sign that begins no character; a method that no web request can have, or that only programs ask
+ * Four kinds of request would be refused before any code of ours sees them, as a page of the server's own or as a fault: an
+ * address with a percent sign that begins no character; one that searches for the character of code 0, which the database
+ * cannot read; a method that no web request can have, or that only programs ask
  * the API with; and a form that does not say that it is one. Node tells of a request before it is handled, so each is made
  * into one that can be read, and is refused in the product's own words.
  */
@@ -28,11 +29,12 @@ export function isForApi(address: string): boolean {
 	return address.startsWith("/api/");
 }
 
-/** An address whose path cannot be read, with its percent signs taken as they stand; any other as it is. */
+/** An address with the percent signs of a path that cannot be read taken as they stand, and nothing that no database can read. */
 export function readableAddress(address: string): string {
 	const end = address.indexOf("?");
 	const path = end === -1 ? address : address.slice(0, end);
-	return isReadable(path) ? address : path.replaceAll("%", "%25") + address.slice(path.length);
+	const search = address.slice(path.length).replaceAll("%00", "");
+	return (isReadable(path) ? path : path.replaceAll("%", "%25")) + search;
 }
 
 function isReadable(path: string): boolean {

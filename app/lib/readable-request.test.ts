@@ -7,6 +7,7 @@ test.each([
 	["/api/v1/%E0%A4%A", "/api/v1/%25E0%25A4%25A"],
 	["/api/v1/%?q=%zz", "/api/v1/%25?q=%zz"],
 	["/data/a%20b?q=1%2", "/data/a%20b?q=1%2"],
+	["/desk/growers?q=a%00b&state=%00", "/desk/growers?q=ab&state="],
 	["/", "/"],
 ])("the address %s is read as %s", (address, read) => {
 	expect(readableAddress(address)).toBe(read);

@@ -2,6 +2,7 @@ import { z } from "zod";
 import type { SentChange } from "#app/collect/step-change.ts";
 import type { StepValues } from "#app/collect/step-fields.ts";
 import { type Language, languages } from "#app/i18n/language.ts";
+import { readableForm } from "#app/lib/readable-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 
 /** More than every box of a screen filled to its limit; a long paste still comes back beside its box. */
@@ -31,7 +32,7 @@ export type PostedStep = {
 /** @throws refusal 413 or 400 for what no form of ours sends. */
 export async function readPosted(request: Request): Promise<PostedStep> {
 	if (Number(request.headers.get("content-length") ?? 0) > mostBytes) throw refusal("too_much_text");
-	const form = await request.formData();
+	const form = readableForm(await request.formData());
 	const names = [...new Set(form.keys())];
 	const all = Posted.safeParse(Object.fromEntries(names.map((name) => [name, form.getAll(name)])));
 	if (!all.success) throw refusal("form_not_understood");

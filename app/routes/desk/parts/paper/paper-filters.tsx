@@ -69,7 +69,9 @@ function areaOptions(areas: PaperArea[], t: TFunction<"answered">, number: (valu
 			districts.delete(null);
 			return [
 				optionOf(stateFips, t("paper.wholeState", { state }), of, state),
-				...[...districts].map(([key, within]) => optionOf(key!, within[0]!.districtName!, within, state)),
+				...[...districts]
+					.toSorted(([, a], [, b]) => a[0]!.districtName!.localeCompare(b[0]!.districtName!))
+					.map(([key, within]) => optionOf(key!, within[0]!.districtName!, within, state)),
 				...of.map((county) =>
 					optionOf(county.countyFips, countyName(t, { ...county, name: county.countyName }), [county], state),
 				),
