@@ -11,9 +11,14 @@ export function PaperFormSheet({ sheet, size, onPaperOnly }: PaperFormSheetProps
 			lang={sheet.language}
 			className={classes(
 				`paper-form paper-${size} mb-10 border border-rule p-6 text-sm print:m-0 print:border-0 print:p-0`,
-				onPaperOnly && "hidden print:block",
+				onPaperOnly && "hidden",
 			)}
 		>
+			<div className="paper-running hidden">
+				<p className="pb-3 text-xs">
+					{sheet.number}, {sheet.lines[0]}
+				</p>
+			</div>
 			<div className="flex items-start justify-between gap-6 border-b-2 border-line pb-2">
 				<div>
 					<h2 className="text-xl">{sheet.title}</h2>
