@@ -19,10 +19,13 @@ type DataTableProps<Row> = {
 	sort?: Sort;
 	empty?: ReactNode;
 	captionHidden?: boolean;
+	/** Rows that are left out on paper. */
+	screenOnly?: (row: Row) => boolean;
 };
 
 /** A ledger: rows of one kind, the first column naming each. Too wide, it scrolls in itself and the page stays still. */
-export function DataTable<Row>({ caption, columns, rows, rowKey, sort, empty, captionHidden }: DataTableProps<Row>) {
+export function DataTable<Row>(props: DataTableProps<Row>) {
+	const { caption, columns, rows, rowKey, sort, empty, captionHidden, screenOnly } = props;
 	const { t } = useTranslation();
 	const captionId = useId();
 	if (rows.length === 0) return <>{empty ?? <p className="text-quiet">{t("table.empty")}</p>}</>;
@@ -50,7 +53,13 @@ export function DataTable<Row>({ caption, columns, rows, rowKey, sort, empty, ca
 				</thead>
 				<tbody>
 					{rows.map((row) => (
-						<tr key={rowKey(row)} className="border-b border-rule last:border-b-0 hover:bg-sheet">
+						<tr
+							key={rowKey(row)}
+							className={classes(
+								"border-b border-rule last:border-b-0 hover:bg-sheet",
+								screenOnly?.(row) && "no-print",
+							)}
+						>
 							{columns.map((column, index) => (
 								<BodyCell key={column.key} column={column} first={index === 0}>
 									{column.cell(row)}
@@ -90,7 +99,7 @@ function HeaderCell<Row>({ column, sort }: HeaderCellProps<Row>) {
 					className="print-plain inline-flex min-h-6 items-center gap-1 text-ink"
 				>
 					{column.header}
-					<span aria-hidden="true" className={sorted ? "text-damson" : "text-field"}>
+					<span aria-hidden="true" className={sorted ? "text-damson" : "no-print text-field"}>
 						{sorted === "asc" ? "▲" : sorted === "desc" ? "▼" : "↕"}
 					</span>
 					<span className="sr-only">{t(sorted === "asc" ? "table.sortDown" : "table.sortUp")}</span>

@@ -13,7 +13,7 @@ export function Section({ title, children, level = 2, actions, id }: SectionProp
 		<section id={id} aria-labelledby={headingId} className={level === 2 ? "mt-10" : "mt-6"}>
 			<div
 				className={classes(
-					"mb-4 flex flex-wrap items-end justify-between gap-x-6 gap-y-2",
+					"mb-4 flex flex-wrap items-end justify-between gap-x-6 gap-y-2 break-after-avoid",
 					level === 2 && "border-t border-line pt-3",
 				)}
 			>

@@ -162,7 +162,7 @@ function OneMap({ map, title, chosen, onChoose }: OneMapProps) {
 	const figuresAddress = `${href("/map/figures/:release/:measure/:crop", { release: `${release.number}`, measure: measure.key, crop: cropKey })}?kind=${kind}&classes=${way}`;
 	return (
 		<>
-			<div className="grid grid-cols-[minmax(0,1fr)] gap-6 lg:grid-cols-[minmax(0,1fr)_17rem]">
+			<div className="grid grid-cols-[minmax(0,1fr)] gap-6 lg:grid-cols-[minmax(0,1fr)_17rem] print:grid-cols-[minmax(0,1fr)_15rem]">
 				<CountyMap
 					{...drawn}
 					label={t("map.alternative", { title })}

@@ -6,6 +6,7 @@ import { useAreaName } from "#app/components/map/area-name.ts";
 import { Paging } from "#app/components/paging.tsx";
 import { SearchBar } from "#app/components/search-bar.tsx";
 import { Section } from "#app/components/section.tsx";
+import { useFormat } from "#app/i18n/use-format.ts";
 import type { PageOf } from "#app/lib/page-of.ts";
 import type { Cell } from "#app/publish/cell.ts";
 import type { MapQuery } from "#app/publish/map-choice.ts";
@@ -18,6 +19,8 @@ type AreaTableProps<Row extends Area> = {
 	table: PageOf<Row>;
 	/** Those after the area's own. */
 	columns: Column<Row>[];
+	/** An area that has no growers: on the map it is blank, and paper is not spent on it. */
+	isBlank: (row: Row) => boolean;
 	note?: string;
 	onPoint: (areaKey: string | null) => void;
 	onChoose: (areaKey: string) => void;
@@ -30,44 +33,55 @@ export function AreaTable<Row extends Area>({
 	title,
 	table,
 	columns,
+	isBlank,
 	note,
 	...marks
 }: AreaTableProps<Row>) {
 	const { t } = useTranslation("public");
 	const areaColumn = useAreaColumn<Row>(kind, marks.onChoose);
+	const format = useFormat();
 	const [search] = useSearchParams();
 	const kept = [...search].filter(([key]) => !["q", "page", "find"].includes(key));
+	const blank = table.rows.filter(isBlank).length;
 	const point = (event: FocusEvent | MouseEvent) => {
 		const row = (event.target as HTMLElement).closest("tr");
 		marks.onPoint(row?.querySelector<HTMLElement>("[data-area]")?.dataset.area ?? null);
 	};
 	return (
-		<Section title={t("map.table.title")} id="table">
-			<SearchBar label={t(`map.table.search.${kind}`)} defaultValue={query.q}>
-				{kept.map(([key, value]) => (
-					<input key={key} type="hidden" name={key} value={value} />
-				))}
-			</SearchBar>
-			{/* The rows' links carry the focus; this only listens to where it is. */}
-			{/* oxlint-disable-next-line jsx-a11y/no-static-element-interactions */}
-			<div
-				onFocus={point}
-				onMouseOver={point}
-				onBlur={() => marks.onPoint(null)}
-				onMouseLeave={() => marks.onPoint(null)}
-			>
-				<DataTable
-					caption={title}
-					columns={[areaColumn, ...columns]}
-					rows={table.rows}
-					rowKey={(row) => row.areaKey}
-					sort={{ key: query.sort, direction: query.direction }}
-					empty={<p className="text-quiet">{t("map.table.none", { q: query.q })}</p>}
-				/>
-			</div>
-			{table.total > 0 && <Paging {...table} part="table" />}
-			{note && <p className="mt-3 max-w-prose text-sm text-quiet">{note}</p>}
-		</Section>
+		<div className="print:break-before-page">
+			<Section title={t("map.table.title")} id="table">
+				<SearchBar label={t(`map.table.search.${kind}`)} defaultValue={query.q}>
+					{kept.map(([key, value]) => (
+						<input key={key} type="hidden" name={key} value={value} />
+					))}
+				</SearchBar>
+				{/* The rows' links carry the focus; this only listens to where it is. */}
+				{/* oxlint-disable-next-line jsx-a11y/no-static-element-interactions */}
+				<div
+					onFocus={point}
+					onMouseOver={point}
+					onBlur={() => marks.onPoint(null)}
+					onMouseLeave={() => marks.onPoint(null)}
+				>
+					<DataTable
+						caption={title}
+						columns={[areaColumn, ...columns]}
+						rows={table.rows}
+						rowKey={(row) => row.areaKey}
+						sort={{ key: query.sort, direction: query.direction }}
+						screenOnly={isBlank}
+						empty={<p className="text-quiet">{t("map.table.none", { q: query.q })}</p>}
+					/>
+				</div>
+				{table.total > 0 && <Paging {...table} part="table" />}
+				{blank > 0 && (
+					<p className="mt-1 hidden text-sm text-quiet print:block">
+						{t("map.table.notPrinted", { value: format.number(blank) })}
+					</p>
+				)}
+				{note && <p className="mt-3 max-w-prose text-sm text-quiet">{note}</p>}
+			</Section>
+		</div>
 	);
 }
 

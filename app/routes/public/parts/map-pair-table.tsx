@@ -23,9 +23,18 @@ export function PairTable({ pair, ...shown }: PairTableProps) {
 	const { t } = useTranslation("public");
 	const columns = usePairColumns(pair);
 	return (
-		<AreaTable kind={pair.later.kind} table={pair.table} columns={columns} note={t("map.two.changeNote")} {...shown} />
+		<AreaTable
+			kind={pair.later.kind}
+			table={pair.table}
+			columns={columns}
+			isBlank={isBlank}
+			note={t("map.two.changeNote")}
+			{...shown}
+		/>
 	);
 }
+
+const isBlank = ({ earlier, later }: SeasonRow) => [earlier, later].every((cell) => cell?.look === "no_growers");
 
 function usePairColumns({ earlier, later }: Pair): Column<SeasonRow>[] {
 	const { t } = useTranslation("public");

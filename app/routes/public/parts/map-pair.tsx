@@ -49,42 +49,44 @@ export function MapPair({
 	return (
 		<>
 			<DifferenceNotice pair={pair} />
-			<div className="grid grid-cols-[minmax(0,1fr)] gap-6 lg:grid-cols-2">
-				<SeasonMap
-					figures={earlier}
-					other={later}
-					{...{ shown, chosen, onChoose, pointed, link }}
-					onPoint={setPointed}
-				/>
-				<SeasonMap
-					figures={later}
-					other={earlier}
-					{...{ shown, chosen, onChoose, pointed, link }}
-					onPoint={setPointed}
-				/>
-			</div>
-			<div className="mt-6 grid gap-x-10 gap-y-4 sm:grid-cols-2">
-				<Legend
-					title={t("map.two.legend", { title })}
-					{...countedOn(earlier, shown.picture, shown.state)}
-					classes={earlier.classes}
-					hue={later.hue}
-					measure={later.measure}
-					beside={{
-						...countedOn(later, shown.picture, shown.state),
-						names: [columnName(earlier, later), columnName(later, earlier)],
-					}}
-				/>
-				<div className="grid gap-4 self-start text-sm text-quiet">
-					<p>{t(`map.classes.${later.way}`)}</p>
-					<p>{t(`map.counted.${later.kind}`)}</p>
-					<p>{t("map.withheldWhy")}</p>
-					{[earlier, later].map((of) => (
-						<p key={of.release.number}>
-							{seasonName(of)}:{" "}
-							{t("map.source", { number: of.release.number, date: format.dayOf(of.release.publishedAt) })}
-						</p>
-					))}
+			<div className="print:grid print:grid-cols-[minmax(0,1fr)_16rem] print:gap-6">
+				<div className="grid grid-cols-[minmax(0,1fr)] gap-6 lg:grid-cols-2 print:grid-cols-2 print:gap-3">
+					<SeasonMap
+						figures={earlier}
+						other={later}
+						{...{ shown, chosen, onChoose, pointed, link }}
+						onPoint={setPointed}
+					/>
+					<SeasonMap
+						figures={later}
+						other={earlier}
+						{...{ shown, chosen, onChoose, pointed, link }}
+						onPoint={setPointed}
+					/>
+				</div>
+				<div className="mt-6 grid gap-x-10 gap-y-4 sm:grid-cols-2 print:contents">
+					<Legend
+						title={t("map.two.legend", { title })}
+						{...countedOn(earlier, shown.picture, shown.state)}
+						classes={earlier.classes}
+						hue={later.hue}
+						measure={later.measure}
+						beside={{
+							...countedOn(later, shown.picture, shown.state),
+							names: [columnName(earlier, later), columnName(later, earlier)],
+						}}
+					/>
+					<div className="grid gap-4 self-start text-sm text-quiet print:col-span-2 print:gap-2">
+						<p>{t(`map.classes.${later.way}`)}</p>
+						<p>{t(`map.counted.${later.kind}`)}</p>
+						<p>{t("map.withheldWhy")}</p>
+						{[earlier, later].map((of) => (
+							<p key={of.release.number}>
+								{seasonName(of)}:{" "}
+								{t("map.source", { number: of.release.number, date: format.dayOf(of.release.publishedAt) })}
+							</p>
+						))}
+					</div>
 				</div>
 			</div>
 			<PairTable pair={pair} query={shown.query} title={title} onPoint={setPointed} onChoose={onChoose} />

@@ -19,8 +19,10 @@ type MapTableProps = {
 /** The map's figures as a table. */
 export const MapTable = memo(function MapTable({ map: { table, measure, kind, query }, ...shown }: MapTableProps) {
 	const columns = useColumns(measure);
-	return <AreaTable {...{ table, kind, query, columns }} {...shown} />;
+	return <AreaTable {...{ table, kind, query, columns, isBlank }} {...shown} />;
 });
+
+const isBlank = ({ look }: MapCell) => look === "no_growers";
 
 function useColumns(measure: ReleaseMeasure): Column<MapCell>[] {
 	const { t } = useTranslation("public");
