@@ -38,6 +38,9 @@ import { ReleaseFiles } from "./parts/release/release-files.tsx";
 import { TermsOfUse } from "./parts/release/terms-of-use.tsx";
 import { previewColumns, type PreviewRow, ReleasePreview } from "./parts/release/release-preview.tsx";
 
+/** Whoever comes to cite or to take a file waits for no scripts: nothing on it needs any. */
+export const handle = { bare: true };
+
 const previewRows = 8;
 
 export async function loader({ context, params }: Route.LoaderArgs) {

@@ -1,16 +1,12 @@
 import { useTranslation } from "react-i18next";
-import { CopyButton } from "#app/components/copy-button.tsx";
 
-/** How to name the release, to read, to copy, and as a file for a bibliography. */
+/** How to name the release, to read, to copy (one press marks all of it), and as a file for a bibliography. */
 export function ReleaseCitation({ text, number, checksum }: { text: string; number: number; checksum: string }) {
 	const { t } = useTranslation(["public", "dataroom"]);
 	return (
 		<>
-			<p className="max-w-prose border-l-4 border-damson bg-damson-wash px-5 py-4 wrap-anywhere">{text}</p>
+			<p className="max-w-prose border-l-4 border-damson bg-damson-wash px-5 py-4 wrap-anywhere select-all">{text}</p>
 			<ul className="no-print mt-3 flex flex-wrap items-center gap-x-6 gap-y-2">
-				<li>
-					<CopyButton text={text} label={t("dataroom:cite.copy")} />
-				</li>
 				<li>
 					<a href={`/data/${number}/citation.bib`} download>
 						{t("dataroom:cite.bibtex")}
