@@ -4,7 +4,9 @@ import { Link, type LinkProps } from "react-router";
 import { classes } from "./classes.ts";
 
 export type ButtonKind = "primary" | "secondary" | "quiet" | "danger";
-type Look = { kind?: ButtonKind; size?: "normal" | "small" };
+/** A small one is as large as any other where fingers press it. */
+export type ButtonSize = "normal" | "small";
+type Look = { kind?: ButtonKind; size?: ButtonSize };
 
 const kinds: Record<ButtonKind, string> = {
 	primary: "border-damson bg-damson text-on-damson hover:border-damson-deep hover:bg-damson-deep",
@@ -18,7 +20,7 @@ export function buttonClasses({ kind = "primary", size = "normal" }: Look = {}):
 	return classes(
 		"inline-flex items-center justify-center gap-2 rounded-plat border-2 text-center font-bold no-underline",
 		"transition-colors aria-disabled:cursor-progress aria-disabled:opacity-60",
-		size === "small" ? "min-h-9 px-3 py-1 text-sm" : "min-h-11 px-5 py-2",
+		size === "small" ? "min-h-9 px-3 py-1 text-sm pointer-coarse:min-h-11" : "min-h-11 px-5 py-2",
 		kinds[kind],
 	);
 }

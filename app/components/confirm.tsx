@@ -1,6 +1,6 @@
 import { type ReactNode, useId, useRef } from "react";
 import { useTranslation } from "react-i18next";
-import { Button, buttonClasses, type ButtonKind } from "./button.tsx";
+import { Button, buttonClasses, type ButtonKind, type ButtonSize } from "./button.tsx";
 import { useHydrated } from "./use-hydrated.ts";
 
 type ConfirmProps = {
@@ -12,6 +12,8 @@ type ConfirmProps = {
 	name?: string;
 	value?: string;
 	danger?: boolean;
+	/** Of the button that asks. */
+	size?: ButtonSize;
 	/** Hidden inputs. */
 	children?: ReactNode;
 };
@@ -23,13 +25,14 @@ export function Confirm(props: ConfirmProps) {
 
 const triggerKind = (danger?: boolean): ButtonKind => (danger ? "danger" : "secondary");
 
-function ConfirmDialog({ trigger, title, body, confirmLabel, name, value, danger, children }: ConfirmProps) {
+function ConfirmDialog(props: ConfirmProps) {
+	const { trigger, title, body, confirmLabel, name, value, danger, size, children } = props;
 	const { t } = useTranslation();
 	const dialog = useRef<HTMLDialogElement>(null);
 	const id = useId();
 	return (
 		<>
-			<Button type="button" kind={triggerKind(danger)} onClick={() => dialog.current?.showModal()}>
+			<Button type="button" kind={triggerKind(danger)} size={size} onClick={() => dialog.current?.showModal()}>
 				{trigger}
 			</Button>
 			<dialog
@@ -63,10 +66,11 @@ function ConfirmDialog({ trigger, title, body, confirmLabel, name, value, danger
 	);
 }
 
-function ConfirmDetails({ trigger, title, body, confirmLabel, name, value, danger, children }: ConfirmProps) {
+function ConfirmDetails(props: ConfirmProps) {
+	const { trigger, title, body, confirmLabel, name, value, danger, size, children } = props;
 	return (
 		<details>
-			<summary className={buttonClasses({ kind: triggerKind(danger) })}>{trigger}</summary>
+			<summary className={buttonClasses({ kind: triggerKind(danger), size })}>{trigger}</summary>
 			<div className="mt-3 border-2 border-line p-5">
 				<p className="text-lg font-bold">{title}</p>
 				<div className="mt-2">{body}</div>

@@ -51,6 +51,7 @@ export function EditorBlock({ block, index, last, offered, problems }: EditorBlo
 						confirmLabel={t("report_editor.remove")}
 						name="intent"
 						value={`remove:${block.id}`}
+						size="small"
 						danger
 					/>
 				</div>
