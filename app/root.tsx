@@ -9,6 +9,7 @@ import { visitorContext, visitorMiddleware } from "#app/auth/visitor.server.ts";
 import { RefusalPage } from "#app/components/refusal-page.tsx";
 import { type ShellData, useDemo, useShellData } from "#app/components/shell-data.ts";
 import { Shell } from "#app/components/shell.tsx";
+import { useFocusKept } from "#app/components/use-focus-kept.ts";
 import { getInstance, getLanguage, i18nextMiddleware } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { pageMethods } from "#app/lib/page-methods.server.ts";
@@ -77,6 +78,7 @@ export function Layout({ children }: { children: ReactNode }) {
 }
 
 export default function App() {
+	useFocusKept();
 	return <Outlet />;
 }
 

@@ -32,10 +32,11 @@ export function DataTable<Row>(props: DataTableProps<Row>) {
 	return (
 		<section
 			aria-labelledby={captionId}
-			// Scrolled by keyboard only while in focus; holds what is only read out, which would stretch the page below it.
+			// Scrolled by keyboard only while in focus; holds what is only read out, which would stretch the page below it. What
+			// comes into focus is scrolled clear of the head, which may be of several lines.
 			// oxlint-disable-next-line jsx-a11y/no-noninteractive-tabindex
 			tabIndex={0}
-			className="relative max-h-[80vh] overflow-auto border-y-2 border-line print:max-h-none print:overflow-visible"
+			className="relative max-h-[80vh] scroll-pt-24 overflow-auto border-y-2 border-line print:max-h-none print:overflow-visible"
 		>
 			<table className="w-full border-collapse text-sm">
 				<caption

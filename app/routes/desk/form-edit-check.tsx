@@ -79,7 +79,7 @@ export default function FormEditCheck({ loaderData, actionData, params }: Route.
 				<Link to={href("/desk/forms/:formId/screens/:key", params)}>{t("check.back")}</Link>
 			</p>
 			<ErrorSummary problems={actionData?.problems} labels={labels} />
-			<NotChangedNotice why={actionData?.refused ?? undefined} />
+			<NotChangedNotice answer={actionData} />
 			<Form method="post" noValidate key={actionData ? "sent" : seen}>
 				<input type="hidden" name="seen" value={seen} />
 				<ChoiceField

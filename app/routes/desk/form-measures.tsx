@@ -70,7 +70,7 @@ export default function FormMeasures({ loaderData, actionData }: Route.Component
 	return (
 		<>
 			<ErrorSummary problems={actionData?.problems} labels={labels} />
-			<NotChangedNotice why={actionData?.refused ?? undefined} />
+			<NotChangedNotice answer={actionData} />
 			<p className="max-w-prose">{t("measures.lead")}</p>
 			{measures.length === 0 && <EmptyState title={t("measures.emptyTitle")}>{t("measures.emptyBody")}</EmptyState>}
 			{measures.map((measure) => {

@@ -14,16 +14,18 @@ import {
 } from "#app/collect/editing/question.schema.ts";
 import type { Question } from "#app/collect/form.ts";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
+import { useFocusOnHash } from "#app/components/use-focus-on-hash.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { lookAgain } from "#app/lib/look-again.ts";
 import { questionsOfMeasure } from "#app/lib/measure-questions.ts";
 import { parseForm, type Problem } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import { useFormWords } from "./parts/forms/condition-words.ts";
 import { EditorFrame } from "./parts/forms/editor-frame.tsx";
 import { getForm, getOwnForm, makeChange, type NotChanged } from "./parts/forms/form-access.server.ts";
 import { NotChangedNotice } from "./parts/forms/not-changed.tsx";
 import { QuestionActions } from "./parts/forms/question-actions.tsx";
-import { changeQuestion, QuestionIntent } from "./parts/forms/question-change.ts";
+import { changeQuestion, placeAfter, QuestionIntent } from "./parts/forms/question-change.ts";
 import { QuestionFields, useQuestionLabels } from "./parts/forms/question-fields.tsx";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
@@ -60,7 +62,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", { key: "forms:toast.saved" });
 	const { formId } = params;
 	if (intent === "remove") return redirect(href("/desk/forms/:formId", { formId }), 303);
-	return redirect(href("/desk/forms/:formId/questions/:key", { formId, key: made.key ?? params.key }), 303);
+	const here = href("/desk/forms/:formId/questions/:key", { formId, key: made.key ?? params.key });
+	return redirect(here + placeAfter(intent), 303);
 }
 
 export const shouldRevalidate = lookAgain;
@@ -73,6 +76,7 @@ function answer(refused: NotChanged | null, values: Fields, problems: Problem[],
 export default function FormQuestion({ loaderData, actionData, params }: Route.ComponentProps) {
 	const { draft, question, screen, mayEdit } = loaderData;
 	const [typed, setTyped] = useState<{ of: Question; question: Question }>();
+	useFocusOnHash();
 	// A preview follows what is typed until the question itself has changed.
 	const shown = typed?.of === question ? typed.question : question;
 	const preview = { ...screen, questions: screen.questions.map((one) => (one === question ? shown : one)) };
@@ -96,14 +100,18 @@ type QuestionFormProps = Route.ComponentProps["loaderData"] & {
 };
 
 function QuestionForm({ draft, held, question, screen, seen, sent, onTyped }: QuestionFormProps) {
-	const { i18n } = useTranslation("forms");
+	const { t, i18n } = useTranslation("forms");
+	const said = useFormWords();
 	const labels = useQuestionLabels();
 	const value = sent?.values ?? fieldsOfQuestion(question);
 	return (
 		<>
 			<ErrorSummary problems={sent?.problems} labels={labels} />
-			<NotChangedNotice why={sent?.refused ?? undefined} />
+			<NotChangedNotice answer={sent} />
 			<Form
+				id="question"
+				tabIndex={-1}
+				aria-label={t("question.formOf", { name: said(question.text) })}
 				method="post"
 				noValidate
 				key={`${seen} ${sent ? "sent" : ""}`}
@@ -125,6 +133,7 @@ function QuestionForm({ draft, held, question, screen, seen, sent, onTyped }: Qu
 				<QuestionActions
 					draft={draft}
 					screen={screen}
+					question={question}
 					isHeld={held.includes(question.key)}
 					measures={definitionOfDraft(draft).measures.filter(
 						(measure) => !measure.base && questionsOfMeasure(measure).includes(question.key),

@@ -9,6 +9,7 @@ import { fingerprintOf } from "#app/collect/editing/form-drafts.server.ts";
 import { fieldsOfScreen, readScreenFields, ScreenFields as Fields } from "#app/collect/editing/screen.schema.ts";
 import type { Screen } from "#app/collect/form.ts";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
+import { useFocusOnHash } from "#app/components/use-focus-on-hash.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { lookAgain } from "#app/lib/look-again.ts";
 import { parseForm, type Problem } from "#app/lib/parse-form.ts";
@@ -61,7 +62,8 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	context.get(sessionContext).flash("toast", { key: "forms:toast.saved" });
 	const { formId } = params;
 	if (intent === "remove") return redirect(href("/desk/forms/:formId", { formId }), 303);
-	return redirect(href("/desk/forms/:formId/screens/:key", params), 303);
+	const here = href("/desk/forms/:formId/screens/:key", params);
+	return redirect(intent === "save" ? here : `${here}#move-${intent}`, 303);
 }
 
 export const shouldRevalidate = lookAgain;
@@ -74,13 +76,14 @@ function answer(refused: NotChanged | null, values: Fields, problems: Problem[])
 export default function FormScreen({ loaderData, actionData, params }: Route.ComponentProps) {
 	const { t } = useTranslation("forms");
 	const { draft, held, mayEdit, screen, seen } = loaderData;
+	useFocusOnHash();
 	const labels = useScreenLabels();
 	const value = actionData?.values ?? fieldsOfScreen(screen);
 	const isHeld = screen.questions.some(({ key }) => held.includes(key));
 	return (
 		<EditorFrame formId={params.formId} draft={draft} preview={screen}>
 			<ErrorSummary problems={actionData?.problems} labels={labels} />
-			<NotChangedNotice why={actionData?.refused ?? undefined} />
+			<NotChangedNotice answer={actionData} />
 			{mayEdit && (
 				<Form method="post" noValidate key={`${screen.key} ${seen} ${actionData ? "sent" : ""}`}>
 					<input type="hidden" name="seen" value={seen} />

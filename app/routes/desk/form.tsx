@@ -86,11 +86,12 @@ function change(step: EditStep, draft: Args[0], held: Args[1]) {
 	}
 }
 
-/** What was added is written on at once; what was moved keeps its place in the page. */
+/** What was added is written on at once; what was moved comes back with the focus on its button, which may be pressed again. */
 function addressAfter(step: EditStep, formId: string, added = ""): string {
-	if (step.intent === "add_question") return href("/desk/forms/:formId/questions/:key", { formId, key: added });
+	if (step.intent === "add_question")
+		return `${href("/desk/forms/:formId/questions/:key", { formId, key: added })}#question`;
 	const here = href("/desk/forms/:formId", { formId });
-	if (step.intent === "move") return `${here}#${step.what.replace(/:(up|down):/, "-")}`;
+	if (step.intent === "move") return `${here}#move-${step.what.replaceAll(":", "-")}`;
 	return step.intent === "add_screen" ? `${here}#screen-${added}` : here;
 }
 
@@ -105,7 +106,7 @@ export default function FormPage({ loaderData, actionData, params }: Route.Compo
 	return (
 		<>
 			<ErrorSummary problems={problems} labels={labels} />
-			<NotChangedNotice why={actionData?.refused ?? undefined} />
+			<NotChangedNotice answer={actionData} />
 			<FormParts formId={params.formId} draft={draft} held={held} mayEdit={mayEdit} />
 			{mayEdit && (
 				<>

@@ -1,11 +1,12 @@
-import { useEffect, useRef } from "react";
+import { useRef } from "react";
 import { useTranslation } from "react-i18next";
-import { Form, useLocation, useNavigation } from "react-router";
+import { Form, useNavigation } from "react-router";
 import { Button, ButtonLink } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
+import { useFocusOnHash } from "#app/components/use-focus-on-hash.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import type { DeskReport } from "#app/publish/drafting/reports.server.ts";
@@ -139,12 +140,4 @@ function Conflict({ edit }: { edit: number }) {
 			</Notice>
 		</div>
 	);
-}
-
-/** After a block was added or moved the page comes back with its address; the focus goes there with it. */
-function useFocusOnHash() {
-	const location = useLocation();
-	useEffect(() => {
-		if (location.hash.startsWith("#block-")) document.getElementById(location.hash.slice(1))?.focus();
-	}, [location]);
 }

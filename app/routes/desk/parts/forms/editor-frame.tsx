@@ -21,7 +21,7 @@ export function EditorFrame({ formId, draft, preview, children }: EditorFramePro
 				</p>
 				<div className="grid gap-8 xl:grid-cols-[minmax(0,1fr)_21rem]">
 					<div className="min-w-0">{children}</div>
-					<div className="min-w-0 xl:sticky xl:top-4 xl:self-start">
+					<div className="min-w-0 xl:sticky xl:top-18 xl:self-start">
 						<PhonePreview screen={preview} />
 					</div>
 				</div>

@@ -1,6 +1,5 @@
-import { useEffect } from "react";
 import { useTranslation } from "react-i18next";
-import { Form, href, Link, useLocation } from "react-router";
+import { Form, href, Link } from "react-router";
 import type { FormDraft } from "#app/collect/editing/draft.ts";
 import { estimateMinutes } from "#app/collect/editing/minutes.ts";
 import { isUntranslated } from "#app/collect/editing/untranslated.ts";
@@ -9,6 +8,7 @@ import { Button } from "#app/components/button.tsx";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { Section } from "#app/components/section.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
+import { useFocusOnHash } from "#app/components/use-focus-on-hash.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { useConditionWords, useFormWords } from "./condition-words.ts";
 
@@ -122,6 +122,7 @@ function MoveButtons({ what, of, name }: { what: "question" | "screen"; of: stri
 	return (["up", "down"] as const).map((way) => (
 		<Button
 			key={way}
+			id={`move-${what}-${way}-${of}`}
 			kind="secondary"
 			size="small"
 			name="what"
@@ -131,12 +132,4 @@ function MoveButtons({ what, of, name }: { what: "question" | "screen"; of: stri
 			{t(`move.${way}`)}
 		</Button>
 	));
-}
-
-/** What was moved or added comes back with its address; the focus goes there with it. */
-function useFocusOnHash() {
-	const location = useLocation();
-	useEffect(() => {
-		if (/^#(question|screen)-/.test(location.hash)) document.getElementById(location.hash.slice(1))?.focus();
-	}, [location]);
 }

@@ -25,7 +25,7 @@ export function OptionFields({ type, value, problems, isHeld }: OptionFieldsProp
 			<p className="mb-3 text-quiet">{isHeld ? t("option.helpHeld") : t("option.help")}</p>
 			<ol className="list-none">
 				{rows.map((option, index) => (
-					<li key={option.key ?? `new-${index}`} className="mb-2 border-l-2 border-line pl-4">
+					<li key={option.key ?? `new-${index}`} id={`option-${index}`} className="mb-2 border-l-2 border-line pl-4">
 						{option.key && <input type="hidden" name={`options[${index}].key`} value={option.key} />}
 						<TextPair
 							name={`options[${index}]`}
@@ -53,6 +53,7 @@ export function OptionFields({ type, value, problems, isHeld }: OptionFieldsProp
 							{option.key && index > 0 && (
 								<div className="mb-6">
 									<Button
+										id={`option-up-${index}`}
 										kind="quiet"
 										size="small"
 										name="intent"

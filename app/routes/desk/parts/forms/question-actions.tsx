@@ -1,17 +1,23 @@
 import { useTranslation } from "react-i18next";
 import { useNavigation } from "react-router";
 import type { FormDraft } from "#app/collect/editing/draft.ts";
-import type { Measure, Screen } from "#app/collect/form.ts";
+import type { Measure, Question, Screen } from "#app/collect/form.ts";
 import { Button } from "#app/components/button.tsx";
 import { Confirm } from "#app/components/confirm.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import { useFormWords } from "./condition-words.ts";
 
-type QuestionActionsProps = { draft: FormDraft; screen: Screen; isHeld: boolean; measures: Measure[] };
+type QuestionActionsProps = {
+	draft: FormDraft;
+	screen: Screen;
+	question: Question;
+	isHeld: boolean;
+	measures: Measure[];
+};
 
 /** The buttons of the question's form. Each saves what is typed, then does its own act. */
-export function QuestionActions({ draft, screen, isHeld, measures }: QuestionActionsProps) {
+export function QuestionActions({ draft, screen, question, isHeld, measures }: QuestionActionsProps) {
 	const { t } = useTranslation("forms");
 	const said = useFormWords();
 	const format = useFormat();
@@ -24,13 +30,20 @@ export function QuestionActions({ draft, screen, isHeld, measures }: QuestionAct
 					{t("question.save")}
 				</Button>
 			</div>
-			<Section title={t("question.place")} level={3}>
+			<Section id="place" title={t("question.place")} level={3}>
+				<p>
+					{t("question.placeNow", {
+						number: format.number(screen.questions.indexOf(question) + 1),
+						value: format.number(screen.questions.length),
+						screen: said(screen.title),
+					})}
+				</p>
 				<p className="mb-3 text-quiet">{t("question.placeHelp")}</p>
 				<div className="flex flex-wrap gap-3">
-					<Button kind="secondary" size="small" name="intent" value="up">
+					<Button id="move-up" kind="secondary" size="small" name="intent" value="up">
 						{t("move.up")}
 					</Button>
-					<Button kind="secondary" size="small" name="intent" value="down">
+					<Button id="move-down" kind="secondary" size="small" name="intent" value="down">
 						{t("move.down")}
 					</Button>
 					{draft.screens

@@ -28,6 +28,24 @@ export function changeQuestion(draft: FormDraft, typed: Question, intent: string
 	}
 }
 
+/** Where the page opens after a button: on the same button, to be pressed again, and for a copy on the copy. */
+export function placeAfter(intent: string): string {
+	const [what, where = ""] = intent.split(":");
+	switch (what) {
+		case "up":
+		case "down":
+			return `#move-${what}`;
+		case "to":
+			return "#place";
+		case "copy":
+			return "#question";
+		case "option_up":
+			return Number(where) > 1 ? `#option-up-${Number(where) - 1}` : "#option-0";
+		default:
+			return "";
+	}
+}
+
 function withOptionUp(question: Question, index: number): Question {
 	if (!("options" in question) || index < 1 || index >= question.options.length) return question;
 	return { ...question, options: moved<never>(question.options as never[], index, index - 1) } as Question;

@@ -69,10 +69,10 @@ export function ScreenActions({ isHeld, questions }: { isHeld: boolean; question
 				<Button name="intent" value="save" busy={busy}>
 					{t("screen.save")}
 				</Button>
-				<Button kind="secondary" name="intent" value="up">
+				<Button id="move-up" kind="secondary" name="intent" value="up">
 					{t("move.up")}
 				</Button>
-				<Button kind="secondary" name="intent" value="down">
+				<Button id="move-down" kind="secondary" name="intent" value="down">
 					{t("move.down")}
 				</Button>
 			</div>
