@@ -12,6 +12,7 @@ import type { Researcher } from "#app/auth/viewer.ts";
 import { i18nextMiddleware } from "#app/i18n/middleware.server.ts";
 import { makeReleaseFiles } from "#app/jobs/make-release-files.server.ts";
 import { chosenType } from "#app/publish/api/accept.ts";
+import { ProblemDetails } from "#app/publish/api/items.ts";
 import { problemStatus } from "#app/publish/api/problem.ts";
 import { loader as areas } from "#app/routes/api/v1/areas.ts";
 import { loader as cells } from "#app/routes/api/v1/cells.ts";
@@ -429,10 +430,15 @@ describe("keys", () => {
 		expect((await get(of("/cells"), { headers: { authorization: "Basic abc" } })).status).toBe(401);
 	});
 
-	test("open what they were made for, and nothing else", async () => {
+	test("open what they were made for, and of nothing else name the right that is missing", async () => {
 		const key = await keyFor(await addResearcher("Pia Lund"), ["figures"]);
 		expect((await get(of("/cells"), bearer(key))).status).toBe(200);
-		expect(await problem(of("/files/cells.csv"), bearer(key))).toMatchObject({ status: 403 });
+		const refused = await get(of("/files/cells.csv"), bearer(key));
+		expect(refused.status).toBe(403);
+		expect(refused.headers.get("www-authenticate")).toContain('error="insufficient_scope", scope="files"');
+		const detail = "This key does not open files. Make one that does at https://survey.example/dataroom/keys.";
+		const errors = [{ parameter: "authorization", detail, allowed: ["files"] }];
+		expect(ProblemDetails.parse(await refused.json())).toMatchObject({ errors });
 	});
 
 	test("an address that asks too often is told how long to wait, and another is not held up", async () => {

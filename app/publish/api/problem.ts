@@ -32,7 +32,9 @@ export type Wrong = {
 		| "unknown_listed"
 		| "out_of_range"
 		| "cursor"
-		| "range";
+		| "range"
+		| "without_figures"
+		| "without_files";
 	values?: Record<string, string | number>;
 	allowed?: readonly string[];
 };

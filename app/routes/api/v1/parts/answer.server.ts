@@ -7,8 +7,8 @@ import { countRequest } from "#app/auth/api-limits.server.ts";
 import { getInstance, getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { chosenType } from "#app/publish/api/accept.ts";
-import type { Operation } from "#app/publish/api/operations.ts";
-import { ApiProblem, problemBody, problemStatus } from "#app/publish/api/problem.ts";
+import type { Operation, Scope } from "#app/publish/api/operations.ts";
+import { ApiProblem, problemBody, problemStatus, type Wrong } from "#app/publish/api/problem.ts";
 import { readRequest } from "#app/publish/api/read-request.ts";
 import { matches } from "#app/publish/cached-json.server.ts";
 import { csvType } from "#app/publish/files/release-file.ts";
@@ -88,8 +88,16 @@ async function keyOf(request: Request, operation: Operation): Promise<KnownKey |
 	if (key === "not_valid") throw new ApiProblem("key_not_valid", [], challenge);
 	if (key === "expired") throw new ApiProblem("key_expired", [], challenge);
 	if (key === "access_ended") throw new ApiProblem("access_ended");
-	if (!key.scopes.includes(operation.scope)) throw new ApiProblem("key_out_of_scope");
+	if (!key.scopes.includes(operation.scope)) throw outOfScope(operation.scope);
 	return key;
+}
+
+/** Which right is missing, for the program (RFC 6750, section 3.1) and in words, with the page where rights are chosen. */
+function outOfScope(scope: Scope): ApiProblem {
+	const values = { page: `${env().BASE_URL}/dataroom/keys` };
+	const wrong: Wrong = { parameter: "authorization", code: `without_${scope}`, values, allowed: [scope] };
+	const challenge = `Bearer realm="api", error="insufficient_scope", scope="${scope}"`;
+	return new ApiProblem("key_out_of_scope", [wrong], { "www-authenticate": challenge });
 }
 
 function typeOf(request: Request, { types }: Operation): string {
