@@ -1,13 +1,20 @@
 import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
 import { Form } from "react-router";
+import type { Problem } from "#app/lib/parse-form.ts";
 import { Button } from "./button.tsx";
-import { fieldId, inputClasses } from "./field-frame.tsx";
+import { describedBy, fieldId, FieldProblem, inputClasses } from "./field-frame.tsx";
 
-type SearchBarProps = { label: string; name?: string; defaultValue?: string | null; children?: ReactNode };
+type SearchBarProps = {
+	label: string;
+	name?: string;
+	defaultValue?: string | null;
+	problem?: Problem;
+	children?: ReactNode;
+};
 
 /** A search with filters beside it, sent by GET so that a link keeps it. */
-export function SearchBar({ label, name = "q", defaultValue, children }: SearchBarProps) {
+export function SearchBar({ label, name = "q", defaultValue, problem, children }: SearchBarProps) {
 	const { t } = useTranslation();
 	return (
 		<search>
@@ -17,13 +24,16 @@ export function SearchBar({ label, name = "q", defaultValue, children }: SearchB
 					<label htmlFor={fieldId(name)} className="block font-bold">
 						{label}
 					</label>
+					<FieldProblem name={name} label={label} problem={problem} />
 					<input
 						type="search"
 						id={fieldId(name)}
 						name={name}
 						defaultValue={defaultValue ?? ""}
 						maxLength={200}
-						className={`${inputClasses()} mt-1.5 w-full`}
+						aria-describedby={describedBy(name, null, problem)}
+						aria-invalid={problem ? true : undefined}
+						className={`${inputClasses(problem)} mt-1.5 w-full`}
 					/>
 				</div>
 				{children}

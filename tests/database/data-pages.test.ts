@@ -73,7 +73,7 @@ const ofRelease = () => ({ release: `${made.number}` });
 
 const page = (number: number) => run(releaseLoader, { params: { release: `${number}` } });
 const found = async (search: string) =>
-	(await run(catalogueLoader, { search })).rows.map(({ release }) => release.number);
+	(await run(catalogueLoader, { search })).data.rows.map(({ release }) => release.number);
 const take = (file: string, researcher?: boolean) => run(fileLoader, { params: { ...ofRelease(), file }, researcher });
 const reportSent = async () => JSON.stringify(await run(reportLoader, { params: { slug: "early-plums" } }));
 const taken = async () => (await owner.query("select file_key from log.download")).rows;
@@ -171,6 +171,11 @@ test("a researcher follows a release from its page and ends that in the data roo
 
 test("the catalogue finds releases by word, season, state and fate", async () => {
 	expect(await found("")).toContain(made.number);
+	const long = "plum ".repeat(600).trim();
+	const { data, init } = await run(catalogueLoader, { search: `?q=${long}&season=2031` });
+	expect(init).toEqual({ status: 400 });
+	expect(data).toMatchObject({ query: { q: long, season: 2031 }, problem: { field: "q", code: "search_too_long" } });
+	expect(data.rows.map(({ release }) => release.number)).toEqual([made.number]);
 	expect(await found("?q=harvest+2031&season=2031&state=19&what=current")).toEqual([made.number]);
 	expect(await found("?season=1999")).toEqual([]);
 	expect(await found("?season=soon&what=lost&state=Iowa")).toEqual(await found(""));

@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import { href, Link } from "react-router";
+import { data, href, Link } from "react-router";
 import type { Route } from "./+types/data";
 import { ButtonLink } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
@@ -15,7 +15,7 @@ import { stateOf } from "#app/publish/api/item-rows.ts";
 import type { Release } from "#app/publish/release.ts";
 import { listEveryRelease, listRespondentsBands, listStatesByRelease } from "#app/publish/releases.server.ts";
 import { ReleaseState } from "#app/components/release/release-state.tsx";
-import { CatalogueQuery, fitsCatalogue, releaseStates } from "./parts/release/catalogue.ts";
+import { CatalogueQuery, fitsCatalogue, problemOfSearch, releaseStates } from "./parts/release/catalogue.ts";
 
 export async function loader({ context, request }: Route.LoaderArgs) {
 	const query = CatalogueQuery.parse(Object.fromEntries(new URL(request.url).searchParams));
@@ -38,8 +38,10 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 			},
 		};
 	});
-	return {
+	const problem = problemOfSearch(query);
+	const shown = {
 		query,
+		problem,
 		any: every.length > 0,
 		seasons: [...new Set(every.map(({ season }) => season))].toSorted((a, b) => b - a),
 		states: [...new Set(Object.values(states).flat())].toSorted(),
@@ -47,6 +49,7 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 			.filter(({ entry }) => fitsCatalogue(entry, query))
 			.map(({ release, places, band }) => ({ release, places, band })),
 	};
+	return data(shown, { status: problem ? 400 : 200 });
 }
 
 type Row = Route.ComponentProps["loaderData"]["rows"][number];
@@ -87,10 +90,10 @@ export default function Data({ loaderData }: Route.ComponentProps) {
 	);
 }
 
-function Filters({ query, seasons, states }: Route.ComponentProps["loaderData"]) {
+function Filters({ query, problem, seasons, states }: Route.ComponentProps["loaderData"]) {
 	const { t } = useTranslation(["dataroom", "public"]);
 	return (
-		<SearchBar label={t("dataroom:catalogue.search")} defaultValue={query.q}>
+		<SearchBar label={t("dataroom:catalogue.search")} defaultValue={query.q} problem={problem}>
 			<ChoiceField
 				kind="select"
 				name="season"

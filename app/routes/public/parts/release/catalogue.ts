@@ -1,10 +1,13 @@
 import { z } from "zod";
+import type { Problem } from "#app/lib/parse-form.ts";
 
 export const releaseStates = ["current", "replaced", "withdrawn"] as const;
 
-/** `?q=&season=&state=&what=` of the catalogue. What is not understood falls back to all: nothing typed is an error. */
+const longestSearch = 200;
+
+/** `?q=&season=&state=&what=` of the catalogue. What is not understood falls back to all. */
 export const CatalogueQuery = z.object({
-	q: z.string().trim().max(200).catch(""),
+	q: z.string().trim().catch(""),
 	season: z.coerce.number().int().min(1900).max(9999).nullable().catch(null),
 	state: z
 		.string()
@@ -14,6 +17,12 @@ export const CatalogueQuery = z.object({
 	what: z.enum(releaseStates).nullable().catch(null),
 });
 export type CatalogueQuery = z.infer<typeof CatalogueQuery>;
+
+/** A search beyond its limit stays in its box, is said to be too long, and narrows nothing. */
+export function problemOfSearch({ q }: CatalogueQuery): Problem | undefined {
+	if (q.length <= longestSearch) return undefined;
+	return { field: "q", code: "search_too_long", detail: { max: longestSearch } };
+}
 
 export type CatalogueEntry = {
 	number: number;
@@ -25,9 +34,12 @@ export type CatalogueEntry = {
 };
 
 /** Words may stand in any order and in either language; case and accents make no difference. */
-export function fitsCatalogue(entry: CatalogueEntry, { q, season, state, what }: CatalogueQuery): boolean {
+export function fitsCatalogue(entry: CatalogueEntry, query: CatalogueQuery): boolean {
+	const { q, season, state, what } = query;
 	const text = plain(entry.text);
-	const words = plain(q).split(/\s+/).filter(Boolean);
+	const words = plain(problemOfSearch(query) ? "" : q)
+		.split(/\s+/)
+		.filter(Boolean);
 	return (
 		words.every((word) => text.includes(word)) &&
 		(season === null || entry.season === season) &&
