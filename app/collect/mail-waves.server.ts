@@ -1,6 +1,6 @@
 import { type RawBuilder, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
-import { queueJob } from "#app/jobs/queue.server.ts";
+import { queueBatch, queueJob } from "#app/jobs/queue.server.ts";
 
 export type WaveKind = "invitation" | "reminder" | "thank_you";
 export type Wave = {
@@ -81,13 +81,17 @@ export async function queueWave(trx: Trx, { surveyId, kind, wave, states, queued
 		.onConflict((conflict) => conflict.constraint("mailing_once").doNothing())
 		.returning("mailing_id")
 		.execute();
-	for (const mailing of mailings) await queueMail(trx, mailing.mailing_id);
+	const jobs = mailings.map(({ mailing_id }) => jobOf(mailing_id));
+	await queueBatch(trx, "send_mail", jobs);
 	return mailings.length;
 }
 
 export function queueMail(trx: Trx, mailingId: string): Promise<void> {
-	return queueJob(trx, "send_mail", { mailingId }, { jobKey: `send_mail:${mailingId}` });
+	const { payload, jobKey } = jobOf(mailingId);
+	return queueJob(trx, "send_mail", payload, { jobKey });
 }
+
+const jobOf = (mailingId: string) => ({ payload: { mailingId }, jobKey: `send_mail:${mailingId}` });
 
 /** The last wave of a kind that was queued, as far as the transaction sees: 0 when none was. */
 export async function lastWave(trx: Trx, surveyId: string, kind: WaveKind, operationId?: string): Promise<number> {

@@ -20,7 +20,7 @@ import { findReleaseById, listCoveredStates, listCrops } from "#app/publish/rele
 import { cropsOf } from "#app/publish/report.ts";
 import { findPublishedById, listReportFiles } from "#app/publish/reports.server.ts";
 import { resolveReport, type ResolvedReport } from "#app/publish/resolved-report.server.ts";
-import { queueJob } from "./queue.server.ts";
+import { queueBatch } from "./queue.server.ts";
 import { sendOnce } from "./send-once.server.ts";
 
 const none = { kind: "none" } as const;
@@ -33,10 +33,11 @@ export async function mailReport({ reportId }: { reportId: string }): Promise<vo
 	const crops = told.includes("all") ? await listCrops(report.releaseId) : told;
 	const subject = { crops, states: await listCoveredStates(report.releaseId) };
 	await scopedTransaction(none, async (trx) => {
-		for (const subscriberId of await addMailings(trx, reportId, subject)) {
-			const jobKey = `mail_subscriber:${reportId}:${subscriberId}`;
-			await queueJob(trx, "mail_subscriber", { reportId, subscriberId }, { jobKey });
-		}
+		const jobs = (await addMailings(trx, reportId, subject)).map((subscriberId) => ({
+			payload: { reportId, subscriberId },
+			jobKey: `mail_subscriber:${reportId}:${subscriberId}`,
+		}));
+		await queueBatch(trx, "mail_subscriber", jobs);
 	});
 }
 

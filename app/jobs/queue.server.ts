@@ -46,11 +46,31 @@ export async function queueJob<K extends keyof JobPayloads>(
 	trx: Trx,
 	task: K,
 	payload: JobPayloads[K],
-	options: { jobKey?: string; runAt?: Date; maxAttempts?: number } = {},
+	options: { jobKey?: string; runAt?: Date; maxAttempts?: number; priority?: number } = {},
 ): Promise<void> {
 	await sql`select graphile_worker.add_job(${task}::text, payload := ${JSON.stringify(payload)}::json,
 		run_at := ${options.runAt ?? null}::timestamptz, max_attempts := ${options.maxAttempts ?? null}::int,
-		job_key := ${options.jobKey ?? null}::text)`.execute(trx);
+		job_key := ${options.jobKey ?? null}::text, priority := ${options.priority ?? 0}::int)`.execute(trx);
+}
+
+/** So many jobs of a batch have their turn before another batch has one. */
+const perTurn = 50;
+/** The queue keeps a small number: beyond this turn a batch's jobs are alike. */
+const lastTurn = 1_000;
+
+/**
+ * Queues many jobs of a kind in turns: whatever is queued singly goes first, and a small batch, such as a word to the ten who
+ * follow a release, waits for one turn of the thousand thank-yous queued before it, not for all of them.
+ */
+export async function queueBatch<K extends keyof JobPayloads>(
+	trx: Trx,
+	task: K,
+	jobs: { payload: JobPayloads[K]; jobKey: string }[],
+): Promise<void> {
+	for (const [at, { payload, jobKey }] of jobs.entries()) {
+		const turn = Math.floor(at / perTurn);
+		await queueJob(trx, task, payload, { jobKey, priority: 1 + Math.min(turn, lastTurn) });
+	}
 }
 
 /** Takes back work that has not begun; work that never was is no fault. */

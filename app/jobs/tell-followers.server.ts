@@ -20,7 +20,7 @@ import { mailWords } from "#app/mail/words.server.ts";
 import { listCellChanges } from "#app/publish/cell-changes.server.ts";
 import type { Release } from "#app/publish/release.ts";
 import { findReleaseById, listEditions, listMeasures } from "#app/publish/releases.server.ts";
-import { queueJob } from "./queue.server.ts";
+import { queueBatch, queueJob } from "./queue.server.ts";
 import { sendOnce } from "./send-once.server.ts";
 
 /** So many changed figures stand in the mail itself; the page that it links to has all. */
@@ -37,10 +37,12 @@ export async function tellFollowers({ releaseId, change }: Omit<ChangeKey, "foll
 	const release = await findReleaseById(releaseId);
 	if (!release || (change === "revised" && release.edition === 1)) return;
 	await scopedTransaction(none, async (trx) => {
-		for (const followId of await addChangeMailings(trx, { releaseId, seriesId: release.seriesId, change })) {
-			const jobKey = `tell_follower:${releaseId}:${change}:${followId}`;
-			await queueJob(trx, "tell_follower", { releaseId, change, followId }, { jobKey });
-		}
+		const followIds = await addChangeMailings(trx, { releaseId, seriesId: release.seriesId, change });
+		const jobs = followIds.map((followId) => ({
+			payload: { releaseId, change, followId },
+			jobKey: `tell_follower:${releaseId}:${change}:${followId}`,
+		}));
+		await queueBatch(trx, "tell_follower", jobs);
 	});
 }
 
