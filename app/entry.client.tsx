@@ -7,6 +7,7 @@ import { z } from "zod";
 import { isLanguage } from "#app/i18n/language.ts";
 import { loadLanguage } from "#app/i18n/load-language.client.ts";
 import { i18nextSettings } from "#app/i18n/settings.ts";
+import { tellHalfTypedDays } from "#app/lib/half-typed-days.ts";
 
 // The content security policy forbids building functions from text, which zod would try for speed.
 z.config({ jitless: true });
@@ -30,4 +31,5 @@ async function hydrate() {
 	});
 }
 
+tellHalfTypedDays(document);
 void hydrate();

@@ -133,6 +133,7 @@ export default [
 			...prefix("surveys/:surveyId", [
 				layout("routes/desk/survey-layout.tsx", [
 					index("routes/desk/survey.tsx"),
+					route("edit", "routes/desk/survey-edit.tsx"),
 					route("rehearsal", "routes/desk/rehearsal.tsx"),
 					route("brief", "routes/desk/brief.tsx"),
 					route("mailing", "routes/desk/mailing.tsx"),

@@ -6,6 +6,8 @@ export const logActions = {
 	access: ["requested", "approved", "declined"],
 	survey: [
 		"created",
+		"changed",
+		"discarded",
 		"copied",
 		"archived",
 		"taken_out",

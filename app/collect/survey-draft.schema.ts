@@ -16,7 +16,11 @@ export type ClosingForm = z.infer<typeof ClosingForm>;
 export const SurveyDraft = ClosingForm.extend({
 	/** Of a ready form, or of one that an associate made; whether there is such a form, the writing function checks. */
 	formKey: z.string({ error: "choice_wrong" }).max(80, "choice_wrong"),
-	season: z.coerce.number({ error: "empty" }).int("not_whole").min(2000, "season_wrong").max(2100, "season_wrong"),
+	season: z.coerce
+		.number({ error: "season_wrong" })
+		.int("not_whole")
+		.min(2000, "season_wrong")
+		.max(2100, "season_wrong"),
 	/** Both left empty, a survey is called as its form is; one alone, the writing function refuses. */
 	titleEn: z.string().trim().max(120, "too_long").optional(),
 	titleEs: z.string().trim().max(120, "too_long").optional(),
@@ -24,3 +28,7 @@ export const SurveyDraft = ClosingForm.extend({
 	states: several(z.string().max(2, "choice_wrong")),
 });
 export type SurveyDraft = z.infer<typeof SurveyDraft>;
+
+/** What of a draft can be changed: all but its form, on which its brief and its rehearsal rest. */
+export const SurveyChange = SurveyDraft.omit({ formKey: true });
+export type SurveyChange = z.infer<typeof SurveyChange>;

@@ -7,7 +7,7 @@ import type { Problem } from "#app/lib/parse-form.ts";
 import type { Words } from "./form.ts";
 import { findFormToAsk } from "./forms.server.ts";
 import { momentIn } from "./survey-closing.ts";
-import type { ClosingForm, SurveyDraft } from "./survey-draft.schema.ts";
+import type { ClosingForm, SurveyChange, SurveyDraft } from "./survey-draft.schema.ts";
 import { Weighting } from "./weighting.ts";
 
 export type SurveyState = "draft" | "open" | "closed";
@@ -125,6 +125,33 @@ function toSurvey(row: SurveyRow, viewer: Associate) {
 
 /** Writes a draft. @returns its id, or what to mend: a state that is not granted, an unknown crop, a closing time gone by. */
 export async function createSurvey(trx: Trx, viewer: Associate, draft: SurveyDraft, now = new Date()) {
+	const form = await findFormToAsk(trx, draft.formKey);
+	const read = await readDraft(trx, viewer, { ...draft, formTitle: form?.title }, now);
+	if (!form || read.problems) return { problems: read.problems ?? [] };
+	const survey = await trx
+		.insertInto("collect.survey")
+		.values({ ...read.values, form_version_id: form.formVersionId, created_by: viewer.personId })
+		.returning("survey_id")
+		.executeTakeFirstOrThrow();
+	const surveyId = survey.survey_id;
+	await writeStates(trx, surveyId, draft.states);
+	await logEvent(trx, {
+		personId: viewer.personId,
+		action: "survey.created",
+		subjectKind: "survey",
+		subjectId: surveyId,
+		detail: { season: draft.season, states: draft.states, form: draft.formKey },
+	});
+	return { surveyId };
+}
+
+/** What a draft's fields come to as columns, or what to mend in them. Without a title of its own it is called as its form is. */
+export async function readDraft(
+	trx: Trx,
+	viewer: Associate,
+	{ formTitle, ...draft }: SurveyChange & { formTitle: Words | undefined },
+	now: Date,
+) {
 	const problems: Problem[] = [];
 	const crops = await trx
 		.selectFrom("directory.crop")
@@ -139,35 +166,23 @@ export async function createSurvey(trx: Trx, viewer: Associate, draft: SurveyDra
 	// A title in one language alone would stand beside the form's in the other: two names for one survey.
 	if (draft.titleEn && !draft.titleEs) problems.push({ field: "titleEs", code: "empty" });
 	if (draft.titleEs && !draft.titleEn) problems.push({ field: "titleEn", code: "empty" });
-	const form = await findFormToAsk(trx, draft.formKey);
-	if (!form) problems.push({ field: "formKey", code: "choice_wrong" });
-	if (problems.length > 0 || "problem" in closing || !form) return { problems };
+	if (!formTitle) problems.push({ field: "formKey", code: "choice_wrong" });
+	if (problems.length > 0 || "problem" in closing || !formTitle) return { problems };
+	const values = {
+		season: draft.season,
+		title: JSON.stringify({ en: draft.titleEn || formTitle.en, es: draft.titleEs || formTitle.es }),
+		crop_keys: [...new Set(draft.crops)],
+		closes_at: closing.closesAt,
+	};
+	return { values };
+}
 
-	const survey = await trx
-		.insertInto("collect.survey")
-		.values({
-			form_version_id: form.formVersionId,
-			season: draft.season,
-			title: JSON.stringify({ en: draft.titleEn || form.title.en, es: draft.titleEs || form.title.es }),
-			crop_keys: [...new Set(draft.crops)],
-			closes_at: closing.closesAt,
-			created_by: viewer.personId,
-		})
-		.returning("survey_id")
-		.executeTakeFirstOrThrow();
-	const surveyId = survey.survey_id;
+/** The states of a new survey, or of a draft that has none for the moment. */
+export async function writeStates(trx: Trx, surveyId: string, states: string[]): Promise<void> {
 	await trx
 		.insertInto("collect.survey_state")
-		.values([...new Set(draft.states)].map((state) => ({ survey_id: surveyId, state_fips: state })))
+		.values([...new Set(states)].map((state) => ({ survey_id: surveyId, state_fips: state })))
 		.execute();
-	await logEvent(trx, {
-		personId: viewer.personId,
-		action: "survey.created",
-		subjectKind: "survey",
-		subjectId: surveyId,
-		detail: { season: draft.season, states: draft.states, form: draft.formKey },
-	});
-	return { surveyId };
 }
 
 /** Reads the fields of a closing time in one of the states' zones. */

@@ -1,5 +1,8 @@
+import { sql } from "kysely";
 import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
+import { countLeftOut, listFrameParts } from "#app/collect/frame-parts.server.ts";
+import { changeDraft, discardDraft } from "#app/collect/survey-mending.server.ts";
 import { closeSurvey, extendSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey, findSurvey, listSurveys } from "#app/collect/surveys.server.ts";
 import { addOperation, asDesk, count, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
@@ -35,6 +38,78 @@ describe("a draft", () => {
 		expect(await asDesk(wisconsin, (trx) => findSurvey(trx, wisconsin, iowaOnly))).toBeUndefined();
 		expect(await asDesk(wisconsin, (trx) => findSurvey(trx, wisconsin, "1 or 1=1"))).toBeUndefined();
 		expect(await count(owner, "collect.survey where survey_id = $1", [iowaOnly])).toBe(1);
+	});
+});
+
+const change = (viewer: Associate, surveyId: string, more = {}) => {
+	const { formKey: _form, ...draft } = draftOf(["19"], more);
+	return asDesk(viewer, (trx) => changeDraft(trx, viewer, surveyId, draft));
+};
+const discard = (viewer: Associate, surveyId: string) => asDesk(viewer, (trx) => discardDraft(trx, viewer, surveyId));
+
+describe("mending a draft", () => {
+	test("changes its title, season, crops, states and closing, until it is opened", async () => {
+		const surveyId = await create(both, ["19", "55"]);
+		const wanted = { titleEn: "Frost", titleEs: "Helada", season: 2032, crops: ["plum", "apple"] };
+		expect(await change(iowa, surveyId, wanted)).toBe("states_not_held");
+		expect(await change(both, surveyId, { ...wanted, crops: ["moonfruit"], titleEs: "" })).toEqual({
+			problems: [
+				{ field: "crops", code: "choice_wrong" },
+				{ field: "titleEs", code: "empty" },
+			],
+		});
+		expect(await change(both, surveyId, wanted)).toBe("changed");
+		expect(await asDesk(both, (trx) => findSurvey(trx, both, surveyId))).toMatchObject({
+			title: { en: "Frost", es: "Helada" },
+			season: 2032,
+			cropKeys: ["plum", "apple"],
+			stateFips: ["19"],
+		});
+		expect(await asDesk(wisconsin, (trx) => findSurvey(trx, wisconsin, surveyId))).toBeUndefined();
+		await addOperation(owner, { state: "19" });
+		expect(await open(iowa, surveyId)).toBe("opened");
+		expect(await change(iowa, surveyId)).toBe("not_a_draft");
+		// Not the application either.
+		const rob = asDesk(iowa, (trx) =>
+			trx.deleteFrom("collect.survey_state").where("survey_id", "=", surveyId).execute(),
+		);
+		await expect(rob).rejects.toThrow("keeps its states");
+	});
+
+	test("throws it away with all that was written of it, and nothing that was opened", async () => {
+		const surveyId = await create(both, ["19", "55"]);
+		expect(await discard(iowa, surveyId)).toBe("states_not_held");
+		expect(await discard(both, surveyId)).toBe("discarded");
+		expect(await discard(both, surveyId)).toBe("not_found");
+		expect(await count(owner, "collect.survey where survey_id = $1", [surveyId])).toBe(0);
+		const opened = await create(iowa, ["19"]);
+		await addOperation(owner, { state: "19" });
+		await open(iowa, opened);
+		expect(await discard(iowa, opened)).toBe("not_a_draft");
+		const force = asDesk(iowa, (trx) => sql`select collect.discard_draft(${opened}::uuid)`.execute(trx));
+		await expect(force).rejects.toThrow("no draft to throw away");
+		expect(await count(owner, "collect.survey where survey_id = $1", [opened])).toBe(1);
+	});
+
+	test("shows whom it would ask by state and size, which is whom it asks once opened", async () => {
+		for (const trees of [99, 100, 999, 1000]) await addOperation(owner, { state: "19", trees });
+		await addOperation(owner, { state: "19", crop: "plum" });
+		await addOperation(owner, { state: "19", status: "left" });
+		const surveyId = await create(iowa, ["19"]);
+		const read = () =>
+			asDesk(iowa, async (trx) => {
+				const survey = (await findSurvey(trx, iowa, surveyId))!;
+				const parts = await listFrameParts(trx, iowa, survey);
+				return {
+					parts: parts.toSorted((a, b) => a.sizeClass.localeCompare(b.sizeClass)),
+					leftOut: await countLeftOut(trx, iowa, survey),
+				};
+			});
+		const { parts, leftOut } = await read();
+		expect(parts.map(({ sizeClass }) => sizeClass)).toEqual(["large", "medium", "small"]);
+		expect(leftOut).toBeGreaterThan(0);
+		await open(iowa, surveyId);
+		expect((await read()).parts).toEqual(parts);
 	});
 });
 

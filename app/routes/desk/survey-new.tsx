@@ -10,10 +10,10 @@ import { Button } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
 import { Page } from "#app/components/page.tsx";
-import { TextField } from "#app/components/text-field.tsx";
 import { cropKeys } from "#app/directory/crops.ts";
 import { wordsIn } from "#app/i18n/language.ts";
-import { parseForm } from "#app/lib/parse-form.ts";
+import { type FormValues, parseForm } from "#app/lib/parse-form.ts";
+import { SurveyFields, surveyFieldLabels } from "./parts/survey-fields.tsx";
 
 export async function loader({ context }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
@@ -39,68 +39,26 @@ export async function action({ context, request }: Route.ActionArgs) {
 export default function SurveyNew({ loaderData, actionData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("desk");
 	const { stateFips, season, forms } = loaderData;
-	const values: Record<string, unknown> = actionData?.values ?? {};
-	const typed = (name: string, otherwise = "") => {
-		const value = values[name];
-		return typeof value === "string" || typeof value === "number" ? String(value) : actionData ? "" : otherwise;
+	const values: FormValues = actionData?.values ?? {
+		formKey: "after_harvest",
+		season,
+		crops: [...cropKeys],
+		states: stateFips,
+		closesAt: "17:00",
 	};
-	const chosen = (name: string, otherwise: string[]) =>
-		actionData ? [values[name] ?? []].flat().map(String) : otherwise;
-	const problemOf = (field: string) => actionData?.problems.find((problem) => problem.field === field);
-	const text = (name: "titleEn" | "titleEs" | "season" | "closesOn" | "closesAt", otherwise = "") => ({
-		name,
-		label: t(`surveyNew.${name}`),
-		defaultValue: typed(name, otherwise),
-		problem: problemOf(name),
-	});
-	const fields = [
-		"formKey",
-		"season",
-		"titleEn",
-		"titleEs",
-		"crops",
-		"states",
-		"closesOn",
-		"closesAt",
-		"timeZone",
-	] as const;
 	return (
 		<Page title={t("surveyNew.title")} lead={t("surveyNew.lead")} width="narrow">
-			<ErrorSummary
-				problems={actionData?.problems}
-				labels={Object.fromEntries(fields.map((field) => [field, t(`surveyNew.${field}`)]))}
-			/>
+			<ErrorSummary problems={actionData?.problems} labels={surveyFieldLabels(t)} />
 			<Form method="post" noValidate className="grid gap-6">
-				<input type="hidden" name="timeZone" value="America/Chicago" />
 				<ChoiceField
 					kind="select"
 					name="formKey"
 					legend={t("surveyNew.formKey")}
 					options={forms.map(({ key, title }) => ({ value: key, label: wordsIn(title, i18n.language) }))}
-					defaultValue={typed("formKey", "after_harvest")}
-					problem={problemOf("formKey")}
+					defaultValue={String(values.formKey ?? "")}
+					problem={actionData?.problems.find(({ field }) => field === "formKey")}
 				/>
-				<TextField {...text("season", String(season))} inputMode="numeric" size="short" maxLength={4} />
-				<TextField {...text("titleEn")} maxLength={120} help={t("surveyNew.titleHelp")} optional />
-				<TextField {...text("titleEs")} maxLength={120} help={t("surveyNew.titleHelp")} optional />
-				<ChoiceField
-					kind="checkbox"
-					name="crops"
-					legend={t("surveyNew.crops")}
-					options={cropKeys.map((key) => ({ value: key, label: t(`common:crop.${key}`) }))}
-					defaultValue={chosen("crops", [...cropKeys])}
-					problem={problemOf("crops")}
-				/>
-				<ChoiceField
-					kind="checkbox"
-					name="states"
-					legend={t("surveyNew.states")}
-					options={stateFips.map((key) => ({ value: key, label: t(`common:state.${key}`) }))}
-					defaultValue={chosen("states", stateFips)}
-					problem={problemOf("states")}
-				/>
-				<TextField {...text("closesOn")} type="date" size="medium" />
-				<TextField {...text("closesAt", "17:00")} type="time" size="short" help={t("surveyNew.zone")} />
+				<SurveyFields stateFips={stateFips} values={values} problems={actionData?.problems} />
 				<div>
 					<Button>{t("surveyNew.save")}</Button>
 				</div>

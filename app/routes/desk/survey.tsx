@@ -7,10 +7,12 @@ import { requireAssociate } from "#app/auth/guard.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
+import { countLeftOut, listFrameParts } from "#app/collect/frame-parts.server.ts";
 import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
 import { wallClockOf } from "#app/collect/survey-closing.ts";
 import { ClosingForm } from "#app/collect/survey-draft.schema.ts";
 import { archiveSurvey, copySurvey } from "#app/collect/survey-life.server.ts";
+import { discardDraft } from "#app/collect/survey-mending.server.ts";
 import { closeSurvey, extendSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
 import { findSurvey, readClosing } from "#app/collect/surveys.server.ts";
 import { Confirm } from "#app/components/confirm.tsx";
@@ -24,12 +26,20 @@ import { lookAgain } from "#app/lib/look-again.ts";
 import { type FormValues, parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { ClosingPart, closingLabels } from "./parts/closing-part.tsx";
+import { FrameParts } from "./parts/frame-parts.tsx";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
 	const found = await desk.transaction(async (trx) => {
 		const survey = await findSurvey(trx, desk.viewer, params.surveyId);
-		return survey && { survey, mailings: await countMailings(trx, desk.viewer, params.surveyId) };
+		if (!survey) return undefined;
+		const { viewer } = desk;
+		return {
+			survey,
+			mailings: await countMailings(trx, viewer, params.surveyId),
+			frame: await listFrameParts(trx, viewer, survey),
+			leftOut: survey.state === "draft" ? await countLeftOut(trx, viewer, survey) : 0,
+		};
 	});
 	if (!found) throw refusal("survey_not_found");
 	return { ...found, closing: wallClockOf(found.survey.closesAt, found.survey.timeZone) };
@@ -39,6 +49,7 @@ const Step = z.discriminatedUnion("step", [
 	z.object({ step: z.literal("open") }),
 	z.object({ step: z.literal("close") }),
 	z.object({ step: z.literal("copy") }),
+	z.object({ step: z.literal("discard") }),
 	z.object({ step: z.enum(["archive", "take_out"]) }),
 	z.object({ step: z.literal("invite") }),
 	z.object({ step: z.literal("remind"), wave: z.coerce.number().int().min(1) }),
@@ -69,6 +80,7 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 			? { key: `desk:survey.toast.${step.step}` }
 			: { key: "desk:survey.toast.queued", values: { count: outcome.queued } };
 	context.get(sessionContext).flash("toast", toast);
+	if (outcome === "discarded") return redirect(href("/desk/surveys"), 303);
 	return redirect(href("/desk/surveys/:surveyId", params), 303);
 }
 
@@ -80,6 +92,8 @@ async function takeStep(trx: Trx, viewer: Associate, surveyId: string, step: Ste
 			return closeSurvey(trx, viewer, surveyId);
 		case "copy":
 			return copySurvey(trx, viewer, surveyId);
+		case "discard":
+			return discardDraft(trx, viewer, surveyId);
 		case "archive":
 		case "take_out":
 			return archiveSurvey(trx, viewer, surveyId, step.step === "archive");
@@ -99,6 +113,7 @@ const settled: Record<Step["step"], string[]> = {
 	open: ["opened", "already_open"],
 	close: ["closed", "already_closed"],
 	copy: [],
+	discard: ["discarded"],
 	archive: ["archived", "unchanged"],
 	take_out: ["taken_out", "unchanged"],
 	invite: [],
@@ -109,14 +124,15 @@ const settled: Record<Step["step"], string[]> = {
 export const shouldRevalidate = lookAgain;
 
 export default function SurveyPage({ loaderData, actionData }: Route.ComponentProps) {
-	const { survey, mailings, closing } = loaderData;
+	const { survey, mailings, closing, frame, leftOut } = loaderData;
+	const mayChange = survey.state === "draft" && !survey.rehearsalOf && survey.statesNotHeld.length === 0;
 	const { t } = useTranslation("desk");
 	const format = useFormat();
 	return (
 		<>
 			<ErrorSummary problems={actionData?.problems} labels={closingLabels(t)} />
 			{actionData?.refused && <Notice tone="attention">{t(`survey.refused.${actionData.refused}`)}</Notice>}
-			{survey.state === "draft" && survey.statesNotHeld.length === 0 && (
+			{mayChange && (
 				<Notice tone="info" title={t("rehearsal.offer")}>
 					<Link to={href("/desk/surveys/:surveyId/rehearsal", { surveyId: survey.surveyId })}>
 						{t("rehearsal.offerLink")}
@@ -158,9 +174,21 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 					},
 				]}
 			/>
+			{mayChange && (
+				<p className="mt-3">
+					<Link to={href("/desk/surveys/:surveyId/edit", { surveyId: survey.surveyId })}>{t("surveyEdit.link")}</Link>
+				</p>
+			)}
+			<FrameParts
+				surveyId={survey.surveyId}
+				parts={frame}
+				frozen={survey.openedAt && format.moment(survey.openedAt, survey.timeZone)}
+				leftOut={leftOut}
+			/>
 			<Section title={t("survey.next")}>
 				<Form method="post" className="flex flex-wrap gap-4">
 					{survey.state === "draft" && <StepButton step="open" />}
+					{mayChange && <StepButton step="discard" />}
 					{survey.state === "open" && mailings.toInvite > 0 && <StepButton step="invite" count={mailings.toInvite} />}
 					{survey.state === "open" && mailings.toRemind > 0 && (
 						<StepButton step="remind" count={mailings.toRemind}>
