@@ -104,8 +104,8 @@ export default function ReleasePage({ loaderData, actionData }: Route.ComponentP
 			<ErrorSummary problems={actionData?.problems} labels={{ reasonEn: t("reason.en"), reasonEs: t("reason.es") }} />
 			{actionData?.refused && <Notice tone="attention">{t(`refused.${actionData.refused}`)}</Notice>}
 			{view ? <DraftPart view={view} withdrawn={loaderData.withdrawn} /> : <NoDraft state={state} />}
-			{state === "closed" && !released && <DraftButton again={view !== null} />}
-			{released && <RevisionForm reason={view?.draft.revisionReason ?? null} {...actionData} />}
+			{state === "closed" && !released && <DraftButton draft={view?.draft ?? null} />}
+			{released && <RevisionForm draft={view?.draft ?? null} {...actionData} />}
 		</>
 	);
 }
@@ -119,14 +119,25 @@ function NoDraft({ state }: { state: string }) {
 	);
 }
 
-function DraftButton({ again }: { again: boolean }) {
+type LatestDraft = (Route.ComponentProps["loaderData"]["view"] & object)["draft"] | null;
+
+/** What drafting does, and what else if the draft that is approved already loses its place by it. */
+function useConfirmBody(draft: LatestDraft, body: string): string {
 	const { t } = useTranslation("release");
+	const format = useFormat();
+	if (draft?.status !== "scheduled" || !draft.publishAt) return body;
+	return `${t("draft.replacesApproved", { moment: format.moment(draft.publishAt, draft.timeZone) })} ${body}`;
+}
+
+function DraftButton({ draft }: { draft: LatestDraft }) {
+	const { t } = useTranslation("release");
+	const body = useConfirmBody(draft, t("draft.confirmBody"));
 	return (
 		<Form method="post" className="no-print mt-8">
 			<Confirm
-				trigger={t(again ? "draft.again" : "draft.first")}
+				trigger={t(draft ? "draft.again" : "draft.first")}
 				title={t("draft.confirmTitle")}
-				body={t("draft.confirmBody")}
+				body={body}
 				confirmLabel={t("draft.confirm")}
 				name="step"
 				value="draft"
@@ -135,11 +146,13 @@ function DraftButton({ again }: { again: boolean }) {
 	);
 }
 
-type RevisionFormProps = { reason: Words | null; values?: FormValues; problems?: Problem[] };
+type RevisionFormProps = { draft: LatestDraft; values?: FormValues; problems?: Problem[] };
 
 /** Drafts published figures anew. A draft of a revision that waits lends its reason to the next. */
-function RevisionForm({ reason, values, problems }: RevisionFormProps) {
+function RevisionForm({ draft, values, problems }: RevisionFormProps) {
 	const { t } = useTranslation("release");
+	const reason = draft?.revisionReason;
+	const body = useConfirmBody(draft, t("revision.confirmBody"));
 	const field = (name: "reasonEn" | "reasonEs", label: string, standing?: string) => ({
 		name,
 		label,
@@ -158,7 +171,7 @@ function RevisionForm({ reason, values, problems }: RevisionFormProps) {
 				<Confirm
 					trigger={t("revision.button")}
 					title={t("revision.confirmTitle")}
-					body={t("revision.confirmBody")}
+					body={body}
 					confirmLabel={t("revision.button")}
 					name="step"
 					value="revise"
