@@ -52,12 +52,16 @@ export function dispositionAfter(
 
 export const callFilters = ["to_call", "due", "later", "all"] as const;
 
-/** `?q=&show=&state=&after=&before=&call=` of the calls to make; `call` is the grower on the line. Nothing typed is an error. */
+/**
+ * `?q=&show=&state=&after=&before=&call=&noted=` of the calls to make; `call` is the grower on the line, `noted` the one whom a
+ * note was just made of. Nothing typed is an error.
+ */
 export const CallQuery = z.object({
 	q: z.string().trim().max(200).catch(""),
 	show: z.enum(callFilters).catch("to_call"),
 	state: z.string().max(2).catch("all"),
 	...besideParts,
 	call: z.guid().nullable().catch(null),
+	noted: z.guid().nullable().catch(null),
 });
 export type CallQuery = z.infer<typeof CallQuery>;

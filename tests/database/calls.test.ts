@@ -1,6 +1,7 @@
 import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { countDueCalls, findCall, listCalls } from "#app/collect/calls.server.ts";
+import { takeBackNote } from "#app/collect/contact-undo.server.ts";
 import { CallQuery, ContactForm } from "#app/collect/contacts.schema.ts";
 import { listContacts, noteContact } from "#app/collect/contacts.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
@@ -100,6 +101,29 @@ describe("what a call came to", () => {
 		expect(await dispositionOf(surveyId, ids.declined!)).toBe("refused");
 		expect(await dispositionOf(other, ids.spoke!)).toBe("not_reached");
 		expect(await dispositionOf(other, ids.declined!)).toBe("not_reached");
+	});
+
+	test("taken back by whoever noted it, as it was before; a note that is not the newest own one stays", async () => {
+		const { surveyId, ids } = await ask([{ name: "wrong row" }]);
+		const operationId = ids["wrong row"]!;
+		const takeBack = (viewer: Associate) =>
+			asDesk(viewer, (trx) => takeBackNote(trx, viewer, { surveyId, operationId }));
+		await note(iowa, operationId, { surveyId, outcome: "reached" });
+		await owner.query("update collect.contact set made_at = made_at - interval '2 hours' where operation_id = $1", [
+			operationId,
+		]);
+		await note(iowa, operationId, { surveyId, outcome: "refused" });
+		expect(await namesOf(iowa, surveyId)).toEqual([]);
+		expect([await takeBack(wisconsin), await takeBack(both)]).toEqual(["stays", "stays"]);
+		expect(await takeBack(iowa)).toBe("taken_back");
+		expect(await dispositionOf(surveyId, operationId)).toBe("reached");
+		expect(await namesOf(iowa, surveyId)).toEqual(["wrong row"]);
+		// The one before is too old.
+		expect(await takeBack(iowa)).toBe("stays");
+		await owner.query("update collect.contact set made_at = now() where operation_id = $1", [operationId]);
+		expect(await takeBack(iowa)).toBe("taken_back");
+		expect(await dispositionOf(surveyId, operationId)).toBe("not_reached");
+		expect(await asDesk(iowa, (trx) => listContacts(trx, operationId))).toEqual([]);
 	});
 
 	test("without a survey, or when nobody was reached, every disposition stays", async () => {

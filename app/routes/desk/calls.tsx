@@ -4,6 +4,7 @@ import type { Route } from "./+types/calls";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { findCall, listCalls } from "#app/collect/calls.server.ts";
+import { findOwnNote, takeBackNote } from "#app/collect/contact-undo.server.ts";
 import { callFilters, CallQuery, ContactForm } from "#app/collect/contacts.schema.ts";
 import { listContacts, noteContact } from "#app/collect/contacts.server.ts";
 import { listEntryDrafts } from "#app/collect/entry-drafts.server.ts";
@@ -16,6 +17,7 @@ import { parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { CallCard } from "./parts/calls/call-card.tsx";
 import { CallTable } from "./parts/calls/call-table.tsx";
+import { OwnNote } from "./parts/calls/own-note.tsx";
 import { readCallWorth } from "./parts/calls/call-worth.server.ts";
 import { EntryDrafts } from "./parts/entry/entry-drafts.tsx";
 import { useContactLabels } from "./parts/growers/contact-fields.tsx";
@@ -33,6 +35,7 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 		if (query.call && !call) return undefined;
 		return {
 			state,
+			noted: query.noted ? ((await findOwnNote(trx, viewer, { surveyId, operationId: query.noted })) ?? null) : null,
 			drafts: await listEntryDrafts(trx, viewer, surveyId),
 			states: stateFips.filter((one) => viewer.stateFips.includes(one)),
 			calls: await listCalls(trx, viewer, surveyId, query, cells),
@@ -47,7 +50,14 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 export async function action({ context, params, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
 	const query = CallQuery.parse(Object.fromEntries(new URL(request.url).searchParams));
-	const form = parseForm(ContactForm, await request.formData());
+	const sent = await request.formData();
+	if (sent.get("step") === "take_back" && query.noted !== null) {
+		const place = { surveyId: params.surveyId, operationId: query.noted };
+		const taken = await desk.transaction((trx) => takeBackNote(trx, desk.viewer, place));
+		context.get(sessionContext).flash("toast", { key: `answered:calls.toast.${taken}` });
+		return redirect(`${href("/desk/surveys/:surveyId/calls", params)}?${listAddress(request)}`, 303);
+	}
+	const form = parseForm(ContactForm, sent);
 	if (query.call === null) throw refusal("form_not_understood");
 	if (!form.ok) return data({ values: form.values, problems: form.problems }, { status: 400 });
 
@@ -55,19 +65,22 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const outcome = await desk.transaction((trx) => noteContact(trx, desk.viewer, query.call!, contact));
 	if (outcome === "not_found") throw refusal("operation_not_found");
 	context.get(sessionContext).flash("toast", { key: "growers:contact.saved" });
-	return redirect(`${href("/desk/surveys/:surveyId/calls", params)}?${listAddress(request)}`, 303);
+	const list = listAddress(request);
+	list.set("noted", query.call);
+	return redirect(`${href("/desk/surveys/:surveyId/calls", params)}?${list}`, 303);
 }
 
 /** The list as it was, without the grower who was on the line. */
 function listAddress(request: Request): URLSearchParams {
 	const search = new URL(request.url).searchParams;
 	search.delete("call");
+	search.delete("noted");
 	return search;
 }
 
 /** Whom to ring next, and what came of it. */
 export default function Calls({ loaderData, actionData, params }: Route.ComponentProps) {
-	const { calls, call, query, states, drafts, state } = loaderData;
+	const { calls, call, query, states, drafts, state, noted } = loaderData;
 	const { t } = useTranslation("answered");
 	const labels = useContactLabels();
 	return (
@@ -82,6 +95,7 @@ export default function Calls({ loaderData, actionData, params }: Route.Componen
 					{...actionData}
 				/>
 			)}
+			{noted && <OwnNote note={noted} />}
 			<EntryDrafts drafts={drafts} surveyId={params.surveyId} />
 			<p className="mb-4 max-w-prose">{t("calls.why")}</p>
 			<SearchBar label={t("calls.search")} defaultValue={query.q}>

@@ -233,6 +233,7 @@ function StepButton({ step, count = 0, children }: StepButtonProps) {
 			confirmLabel={t(`survey.${step}.confirm`)}
 			name="step"
 			value={step}
+			danger={step === "discard"}
 		>
 			{children}
 		</Confirm>

@@ -28,6 +28,7 @@ export function FrameParts({ surveyId, parts, frozen, leftOut }: FramePartsProps
 		key: sizeClass,
 		header: t(`frame.${sizeClass}`, {
 			medium: format.number(sizeClassFrom.medium),
+			below: format.number(sizeClassFrom.large - 1),
 			large: format.number(sizeClassFrom.large),
 		}),
 		numeric: true,
