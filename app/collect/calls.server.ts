@@ -3,6 +3,7 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { countRows, type Order, pageByKey, type PagePart } from "#app/lib/page-by-key.server.ts";
 import type { Place } from "#app/lib/page-by-key.ts";
+import { searchPattern } from "#app/lib/search-pattern.ts";
 import type { CallQuery, ContactOutcome } from "./contacts.schema.ts";
 import type { Disposition } from "./frame-list.server.ts";
 import { isWaitedFor } from "./waited-for.server.ts";
@@ -83,8 +84,8 @@ const waitedFor = (viewer: Associate, surveyId: string) => sql`collect.frame_ope
 
 /** By name of the operation or its contact, or by the number on its paper form. */
 function matching({ q, show, state }: CallQuery) {
-	const pattern = `%${q.replace(/[\\%_]/g, String.raw`\$&`)}%`;
-	const named = sql`(o.name ilike ${pattern} or o.contact_name ilike ${pattern}
+	const pattern = searchPattern(q);
+	const named = sql`(o.name ~* ${pattern} or o.contact_name ~* ${pattern}
 		or left(f.operation_id::text, 8) = ${q.toLowerCase()})`;
 	return sql`${shown[show]} and ${q === "" ? sql`true` : named} and ${state === "all" ? sql`true` : sql`f.state_fips = ${state}`}`;
 }

@@ -2,6 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { type Counted, countRows, type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
+import { searchPattern } from "#app/lib/search-pattern.ts";
 import type { FrameQuery } from "./desk-lists.schema.ts";
 import { listMails, type Mail } from "./mail-list.server.ts";
 
@@ -110,10 +111,10 @@ function orderOf({ sort, direction }: FrameQuery): Order {
 }
 
 function matchingFrame(trx: Trx, viewer: Associate, surveyId: string, { q, show }: FrameQuery) {
-	const pattern = `%${q.replace(/[\\%_]/g, String.raw`\$&`)}%`;
+	const pattern = searchPattern(q);
 	return selectFrame(trx, viewer, surveyId)
 		.$if(q !== "", (rows) =>
-			rows.where((eb) => eb.or([eb("o.name", "ilike", pattern), eb("o.contact_name", "ilike", pattern)])),
+			rows.where((eb) => eb.or([eb("o.name", "~*", pattern), eb("o.contact_name", "~*", pattern)])),
 		)
 		.$if(show === "answered", (rows) => rows.where("r.submitted_at", "is not", null))
 		.$if(show === "not_answered" || show === "no_address", (rows) => rows.where("r.submitted_at", "is", null))

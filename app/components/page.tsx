@@ -20,7 +20,7 @@ export function Page({ title, lead, actions, width = "wide", children }: PagePro
 		<div className={classes("pb-16 pt-8", width === "narrow" && "max-w-(--width-narrow)")}>
 			<title>{`${prefix}${title} – ${t("app.name")}`}</title>
 			<header className="mb-8 flex flex-wrap items-end justify-between gap-x-8 gap-y-4">
-				<div className="max-w-3xl">
+				<div className="max-w-3xl min-w-0 wrap-anywhere">
 					<h1 className="text-2xl sm:text-3xl">{title}</h1>
 					{lead && <div className="mt-3 text-lg text-quiet">{lead}</div>}
 				</div>

@@ -51,6 +51,12 @@ describe("the list", () => {
 		expect(await letters(both, { mail: "1; drop table" })).toBe("ABCDEFG");
 	});
 
+	test("finds a name however its accents were typed, and takes signs for themselves", async () => {
+		await addOperation(owner, { state: "19", name: "Cañón Peña (2)" });
+		for (const q of ["canon pena", "CAÑÓN", "peñá (2)"]) expect(await names(iowa, { q })).toEqual(["Cañón Peña (2)"]);
+		for (const q of ["pena.*", "pe%a", "cañón_", "\\"]) expect(await names(iowa, { q })).toEqual([]);
+	});
+
 	test("is narrowed by the season of the last answer", async () => {
 		const crop = "pawpaw";
 		const word = "Seasonal";

@@ -41,8 +41,8 @@ function headerIndex(rows: Row[]): number {
 function readText(file: Buffer): Row[] | FileRefused {
 	if (file.length === 0) return "file_empty";
 	const text = decode(file);
-	// A picture or an older spreadsheet: no list has such signs.
-	if (text.includes("\0")) return "file_not_known";
+	// A picture or an older spreadsheet has signs that no list has; a document under a list's name says what it is.
+	if (text.includes("\0") || text.startsWith("%PDF-")) return "file_not_known";
 	try {
 		const records = parse(text, {
 			delimiter: delimiterOf(text),

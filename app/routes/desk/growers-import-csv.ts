@@ -26,7 +26,8 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		[...header, t("import.toMend")],
 		rows.map(({ cells, problems }) => [
 			...header.map((_, index) => textOf(cells?.[index])),
-			problems.map((problem) => words(problem, t(`import.field.${problem.field}`))).join(". "),
+			// A line each in the one cell, since some end in a question mark.
+			problems.map((problem) => words(problem, t(`import.field.${problem.field}`))).join("\n"),
 		]),
 	);
 	return new Response(`\uFEFF${csv}`, {

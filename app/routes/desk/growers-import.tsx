@@ -98,7 +98,7 @@ export default function GrowersImport({ loaderData, actionData }: Route.Componen
 							numeric: true,
 							cell: (row) => (row.counts ? format.number(row.counts.bad) : ""),
 						},
-						{ key: "status", header: t("import.log.status"), cell: (row) => <ImportStatusBadge status={row.status} /> },
+						{ key: "status", header: t("import.log.status"), cell: (row) => <ImportStatusBadge file={row} /> },
 					]}
 					empty={<EmptyState title={t("import.log.emptyTitle")}>{t("import.log.emptyBody")}</EmptyState>}
 				/>

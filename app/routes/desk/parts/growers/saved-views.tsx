@@ -29,7 +29,7 @@ export function SavedViews({ views, parts, values, problems }: SavedViewsProps) 
 								<Link
 									to={`${href("/desk/growers")}?${addressOf(view)}`}
 									aria-current={addressOf(view) === shown ? "true" : undefined}
-									className="inline-flex min-h-9 items-center aria-[current=true]:font-bold"
+									className="inline-flex min-h-9 items-center wrap-anywhere aria-[current=true]:font-bold"
 								>
 									{view.name}
 								</Link>
@@ -61,7 +61,7 @@ export function SavedViews({ views, parts, values, problems }: SavedViewsProps) 
 							{views.map((view) => (
 								<li key={view.savedViewId}>
 									<Form method="post" className="flex flex-wrap items-center gap-3">
-										<span>{view.name}</span>
+										<span className="wrap-anywhere">{view.name}</span>
 										<input type="hidden" name="savedViewId" value={view.savedViewId} />
 										<Button
 											kind="quiet"

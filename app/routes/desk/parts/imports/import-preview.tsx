@@ -78,7 +78,8 @@ function ShowName({ show, count }: { show: Show; count: number }) {
 	return t(`import.show.${show}`, { value: format.number(count) });
 }
 
-function Counts({ file: { counts, status, personName, importedAt, createdAt } }: { file: Import }) {
+function Counts({ file }: { file: Import }) {
+	const { counts, status, personName, importedAt, createdAt } = file;
 	const { t } = useTranslation("growers");
 	const format = useFormat();
 	if (!counts) return null;
@@ -92,7 +93,7 @@ function Counts({ file: { counts, status, personName, importedAt, createdAt } }:
 	return (
 		<DescriptionList
 			items={[
-				{ term: t("import.log.status"), detail: <ImportStatusBadge status={status} /> },
+				{ term: t("import.log.status"), detail: <ImportStatusBadge file={file} /> },
 				{ term: t("import.log.who"), detail: personName },
 				{ term: t("import.log.when"), detail: format.moment(importedAt ?? createdAt) },
 				...(Object.keys(told) as (keyof typeof told)[])

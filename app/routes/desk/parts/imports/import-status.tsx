@@ -4,7 +4,7 @@ import { useRevalidator } from "react-router";
 import { ButtonLink } from "#app/components/button.tsx";
 import { StatusBadge } from "#app/components/status-badge.tsx";
 import { useHydrated } from "#app/components/use-hydrated.ts";
-import type { ImportStatus } from "#app/directory/import/imports.server.ts";
+import type { Import, ImportStatus } from "#app/directory/import/imports.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 
 const tones: Record<ImportStatus, "neutral" | "good" | "attention"> = {
@@ -20,8 +20,13 @@ const tones: Record<ImportStatus, "neutral" | "good" | "attention"> = {
 };
 const askEveryMs = 1_000;
 
-export function ImportStatusBadge({ status }: { status: ImportStatus }) {
+/** How a file stands: a step that came to nothing says so, and so does a file of which no row can be taken in. */
+export function ImportStatusBadge({ file }: { file: Pick<Import, "status" | "failure" | "counts"> }) {
 	const { t } = useTranslation("growers");
+	const { status, failure, counts } = file;
+	if (failure) return <StatusBadge tone="attention">{t(`import.refused.${failure.why}.title`)}</StatusBadge>;
+	if (status === "checked" && counts?.operations === 0)
+		return <StatusBadge tone="attention">{t("import.status.allBad")}</StatusBadge>;
 	return <StatusBadge tone={tones[status]}>{t(`import.status.${status}`)}</StatusBadge>;
 }
 

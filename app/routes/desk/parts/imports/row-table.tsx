@@ -43,7 +43,7 @@ function BadRows({ rows, header }: { rows: ImportRow[]; header: string[] }) {
 					key: "cells",
 					header: t("import.inFile"),
 					cell: (row) => (
-						<span className="wrap-anywhere text-quiet">
+						<span className="block min-w-64 wrap-anywhere text-quiet">
 							{(row.cells ?? [])
 								.map((cell, index) => ({ text: textOf(cell), heading: header[index] }))
 								.filter(({ text }) => text !== "")
