@@ -7,6 +7,7 @@ import { addComment, listComments, resolveComment } from "#app/publish/drafting/
 import { startCorrection } from "#app/publish/drafting/report-correction.server.ts";
 import { listEdits } from "#app/publish/drafting/report-edits.server.ts";
 import { keepReportFile } from "#app/publish/drafting/report-files.server.ts";
+import { listReportWork } from "#app/publish/drafting/report-work.server.ts";
 import { findReport, needsLook, saveReport, submitReport } from "#app/publish/drafting/reports.server.ts";
 import { startReport } from "#app/publish/drafting/start-report.server.ts";
 import {
@@ -177,11 +178,14 @@ test("a revised release marks the reports that rest on it, until a next version 
 	const marked = await desk((trx) => findReport(trx, author, report.reportId));
 	expect(marked && needsLook(marked)).toBe(true);
 	expect(marked?.replacedBy).toBe(revised.number);
+	const waiting = { reportId: report.reportId, title: marked?.content.title, work: "revised" };
+	expect(await desk((trx) => listReportWork(trx, author))).toContainEqual(waiting);
 	const started = await desk((trx) => startCorrection(trx, author, report.reportId));
 	const next = await desk((trx) => findReport(trx, author, started.outcome === "started" ? started.reportId : ""));
 	expect(next).toMatchObject({ releaseId: revised.releaseId, version: 2 });
 	const after = await desk((trx) => findReport(trx, author, report.reportId));
 	expect(after && needsLook(after)).toBe(false);
+	expect(await desk((trx) => listReportWork(trx, author))).not.toContainEqual(waiting);
 });
 
 test("saves of one person within ten minutes are one kept version; another person's is the next", async () => {

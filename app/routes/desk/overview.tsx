@@ -17,6 +17,7 @@ import { Section } from "#app/components/section.tsx";
 import { TallyCount } from "#app/components/tally-count.tsx";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
+import { listReportWork } from "#app/publish/drafting/report-work.server.ts";
 import { countOpenFindings } from "#app/review/findings.server.ts";
 import { listReleaseWork } from "#app/release/release-work.server.ts";
 import { CountyCounts } from "./parts/county-counts.tsx";
@@ -47,6 +48,7 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 				surveys.filter((survey) => survey.surveyId === surveyId).map((survey) => ({ ...survey, waiting })),
 			),
 			releases: await listReleaseWork(trx, viewer),
+			reports: await listReportWork(trx, viewer),
 			query,
 			counts: counted && {
 				surveyId: counted.surveyId,
@@ -75,9 +77,11 @@ export default function Overview({ loaderData }: Route.ComponentProps) {
 		<Page title={t("overview.title")}>
 			<TodayList {...loaderData} />
 			{open.length === 0 && (
-				<EmptyState title={t("overview.emptyTitle")} action={start}>
-					{t("overview.emptyBody")}
-				</EmptyState>
+				<div className="mt-6">
+					<EmptyState title={t("overview.emptyTitle")} action={start}>
+						{t("overview.emptyBody")}
+					</EmptyState>
+				</div>
 			)}
 			{open.map((survey) => (
 				<Section

@@ -20,6 +20,7 @@ type TodayListProps = {
 	/** Surveys with answers that came after the closing, and how many of them wait. */
 	late: (Named & { waiting: number })[];
 	releases: (Named & { work: string })[];
+	reports: { reportId: string; title: Words; work: string }[];
 };
 type Task = { key: string; to: string; text: string };
 
@@ -48,7 +49,7 @@ export function TodayList(props: TodayListProps) {
 
 const page = ({ surveyId }: Named) => href("/desk/surveys/:surveyId", { surveyId });
 
-function useTasks({ open, toCheck, drafts, late, releases }: TodayListProps): Task[] {
+function useTasks({ open, toCheck, drafts, late, releases, reports }: TodayListProps): Task[] {
 	const { t, i18n } = useTranslation("desk");
 	const format = useFormat();
 	const nameOf = ({ title, season }: Named) => t("surveys.name", { title: wordsIn(title, i18n.language), season });
@@ -108,5 +109,13 @@ function useTasks({ open, toCheck, drafts, late, releases }: TodayListProps): Ta
 		to: href("/desk/surveys/:surveyId/release", { surveyId: survey.surveyId }),
 		text: t(`overview.task.release.${survey.work}`, { survey: nameOf(survey) }),
 	}));
-	return [...ofChecks, ...ofOpen.filter((task) => task !== false), ...ofDrafts, ...ofLate, ...ofReleases];
+	const ofReports = reports.map(({ reportId, title, work }) => ({
+		key: `report ${reportId}`,
+		to: href("/desk/reports/:reportId", { reportId }),
+		text: t(`overview.task.report.${work}`, {
+			title: wordsIn(title, i18n.language) || t("public:report_editor.untitled"),
+		}),
+	}));
+	const ofSurveys = [...ofChecks, ...ofOpen.filter((task) => task !== false), ...ofDrafts, ...ofLate];
+	return [...ofSurveys, ...ofReleases, ...ofReports];
 }
