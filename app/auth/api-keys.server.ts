@@ -17,7 +17,7 @@ export const ApiKeyForm = z.object({
 	label: z.string({ error: "empty" }).trim().min(1, "empty").max(80, "too_long"),
 	scopes: z.preprocess(
 		(given) => (given === undefined ? [] : Array.isArray(given) ? given : [given]),
-		z.array(z.enum(keyScopes, "wrong")).min(1, "empty"),
+		z.array(z.enum(keyScopes, "wrong")).min(1, "choose_some"),
 	),
 	days: z.enum(keyDays, "wrong"),
 });

@@ -216,6 +216,8 @@ test("a key is told once, when it is made, and what was typed is not lost when i
 			{ field: "days", code: "wrong" },
 		],
 	});
+	const nothing = await send({ label: "Notebook", days: "30" });
+	expect(nothing.data.problems).toEqual([{ field: "scopes", code: "choose_some" }]);
 	const { data: told } = await send(whole);
 	expect(told.key).toMatch(/^tally_[\w-]{43}$/);
 	const listed = await run(keysLoader, { researcher: true });

@@ -11,7 +11,7 @@ export function AccessState({ term, request }: { term: Term | null; request: Ask
 	const { t } = useTranslation("dataroom");
 	const format = useFormat();
 	const lastDay = term?.lastDay ? format.day(term.lastDay) : null;
-	if (term && !term.renewable) return lastDay && <p>{t("home.until", { day: lastDay })}</p>;
+	if (term && !term.renewable) return lastDay && <p className="mb-5">{t("home.until", { day: lastDay })}</p>;
 	const ask = <ButtonLink to={href("/dataroom/access")}>{t(term ? "home.askAgain" : "home.ask")}</ButtonLink>;
 	const standing = lastDay && (
 		<p className="mb-3">{t(term?.holds ? "home.until" : "home.endedOn", { day: lastDay })}</p>
