@@ -32,10 +32,10 @@ export function SeasonBar({ surveys, stateFips }: SeasonBarProps) {
 		>
 			{current ? (
 				// A new key closes the list once a survey was chosen.
-				<details key={key} className="relative">
-					<summary className="inline-flex min-h-11 items-center gap-3">
+				<details key={key} className="relative max-w-full">
+					<summary className="inline-flex min-h-11 max-w-full items-center gap-3">
 						<span className="text-lg font-bold">{current.season}</span>
-						<span>{current.title}</span>
+						<span className="min-w-0 wrap-anywhere">{current.title}</span>
 						{current.isRehearsal && <StatusBadge tone="attention">{t("seasonBar.rehearsal")}</StatusBadge>}
 						<span aria-hidden="true">▾</span>
 						<span className="sr-only">{t("seasonBar.choose")}</span>
@@ -68,7 +68,7 @@ function SurveyList({ surveys, currentId }: { surveys: BarSurvey[]; currentId: s
 						)}
 					>
 						<span className="font-bold">{survey.season}</span>
-						<span className="flex-1">{survey.title}</span>
+						<span className="min-w-0 flex-1 wrap-anywhere">{survey.title}</span>
 						{survey.isRehearsal && <StatusBadge tone="attention">{t("seasonBar.rehearsal")}</StatusBadge>}
 						<StatusBadge tone={tones[survey.state]}>{t(`surveyState.${survey.state}`)}</StatusBadge>
 					</Link>

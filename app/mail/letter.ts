@@ -74,7 +74,7 @@ const font = "font-family:'Noto Sans',system-ui,sans-serif";
 const style = {
 	page: "margin:0;background:#ffffff;color:#1E2A26",
 	column: "max-width:34em;margin:0 auto;padding:24px 16px",
-	heading: `${font};font-size:22px;line-height:1.3;margin:0 0 16px`,
+	heading: `${font};font-size:22px;line-height:1.3;overflow-wrap:anywhere;margin:0 0 16px`,
 	text: `${font};font-size:17px;line-height:1.55;margin:0 0 16px`,
 	small: `${font};font-size:14px;line-height:1.5;margin:0 0 16px;word-break:break-all`,
 	link: "color:#5B2A5E",

@@ -67,7 +67,7 @@ export function CallCard({ call, surveyId, isOpen, values, problems }: CallCardP
 						>
 							{t("paper.one")}
 						</Link>
-						<GrowerLink operationId={operationId} className="inline-flex min-h-11 items-center">
+						<GrowerLink operationId={operationId} className="inline-flex min-h-11 items-center" onlyAsLink>
 							{t("calls.toGrower")}
 						</GrowerLink>
 					</div>
