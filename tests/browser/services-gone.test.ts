@@ -58,6 +58,11 @@ test("with the database gone every page answers 503 in words, and all is well on
 		expect(`${status} ${address}`).toBe(`503 ${address}`);
 		expect(text).toContain("A service that this page needs does not answer");
 	}
+	const refused = await fetch(`${stack.baseUrl}/api/v1/releases`);
+	expect(refused.status).toBe(503);
+	expect(refused.headers.get("content-type")).toBe("application/problem+json; charset=utf-8");
+	expect(refused.headers.get("retry-after")).toBe("60");
+	expect(await refused.json()).toMatchObject({ status: 503, title: "A service does not answer" });
 	expect((await health())[0]).toBe(503);
 	await admin.query(`alter database ${name} with allow_connections true`);
 	await expect.poll(health, { timeout: 20_000 }).toEqual([200, []]);

@@ -95,6 +95,7 @@ const anywhere: ProblemCode[] = [
 	"method_not_allowed",
 	"not_acceptable",
 	"too_many_requests",
+	"service_away",
 ];
 
 /** Refusals by status. Several codes can have one status: each is told by its title and by an example of what is answered. */

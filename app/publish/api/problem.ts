@@ -17,6 +17,7 @@ export const problemStatus = {
 	range_outside: 416,
 	too_many_requests: 429,
 	files_not_ready: 503,
+	service_away: 503,
 } as const;
 export type ProblemCode = keyof typeof problemStatus;
 

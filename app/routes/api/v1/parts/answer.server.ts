@@ -6,6 +6,7 @@ import { checkApiKey, type KnownKey } from "#app/auth/api-keys.server.ts";
 import { countRequest } from "#app/auth/api-limits.server.ts";
 import { getInstance, getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
+import { isServiceAway } from "#app/lib/service-away.server.ts";
 import { chosenType } from "#app/publish/api/accept.ts";
 import type { Operation, Scope } from "#app/publish/api/operations.ts";
 import { ApiProblem, problemBody, problemStatus, type Wrong } from "#app/publish/api/problem.ts";
@@ -61,7 +62,7 @@ export async function answer<O extends Operation>(
 		if (request.method !== "GET" && request.method !== "HEAD")
 			throw new ApiProblem("method_not_allowed", [], { allow: methods });
 		// Whoever tries keys is counted by address, as one without any.
-		const key = await keyOf(request, operation).catch((problem: unknown) => problem as ApiProblem);
+		const key = await keyOf(request, operation).catch(onlyProblem);
 		const refusedKey = key instanceof Error;
 		const counted = await countRequest(request, refusedKey ? null : key);
 		Object.assign(headers, counted.headers);
@@ -74,9 +75,15 @@ export async function answer<O extends Operation>(
 		const made = await work({ request, ...understood, type, words });
 		return "response" in made ? withHeaders(made.response, headers) : await tagged(made, request, type, headers);
 	} catch (error) {
-		if (!(error instanceof ApiProblem)) throw error;
-		return refused(error, request, headers, context);
+		const problem = isServiceAway(error) ? new ApiProblem("service_away", [], { "retry-after": "60" }) : error;
+		return refused(onlyProblem(problem), request, headers, context);
 	}
+}
+
+/** What is no problem of the one who asks goes on as it came. */
+function onlyProblem(error: unknown): ApiProblem {
+	if (error instanceof ApiProblem) return error;
+	throw error;
 }
 
 async function keyOf(request: Request, operation: Operation): Promise<KnownKey | null> {
