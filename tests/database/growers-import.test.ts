@@ -251,7 +251,7 @@ describe("a list in a file", () => {
 		["a header alone", "Farm,County\n", "file_empty"],
 		["a picture", Buffer.from([0x89, 0x50, 0x4e, 0x47, 0, 0, 0, 13]), "file_not_known"],
 		["a document under a list's name", "%PDF-1.7\n1 0 obj<<>>endobj\n", "file_not_known"],
-		["half a spreadsheet", Buffer.concat([Buffer.from([0x50, 0x4b, 3, 4]), Buffer.alloc(400, 7)]), "file_too_large"],
+		["half a spreadsheet", Buffer.concat([Buffer.from([0x50, 0x4b, 3, 4]), Buffer.alloc(400, 7)]), "file_broken"],
 		["too many rows", `Farm,County\n${"a,b\n".repeat(20_001)}`, "too_many_rows"],
 		["too many columns", `Farm,County\n${"a,".repeat(301)}\n`, "too_many_columns"],
 	])("that is %s is refused in words, and nothing is kept of it", async (_, file, why) => {

@@ -11,7 +11,7 @@ import {
 	textOf,
 } from "./cells.ts";
 import { guessColumns } from "./columns.ts";
-import { unzipsWithin } from "./zip-size.server.ts";
+import { measureZip } from "./zip-size.server.ts";
 
 const mostInflated = 80 * 1024 * 1024;
 /** A heading may stand above the row of column names. */
@@ -79,7 +79,8 @@ function delimiterOf(text: string): string {
 }
 
 async function readBook(file: Buffer): Promise<Row[] | FileRefused> {
-	if (!unzipsWithin(file, mostInflated)) return "file_too_large";
+	const size = measureZip(file, mostInflated);
+	if (size !== "within") return `file_${size}`;
 	// Read when the first workbook comes, as where workbooks are made.
 	const { default: exceljs } = await import("exceljs");
 	const book = new exceljs.Workbook();

@@ -1,3 +1,4 @@
+import { useEffect, useRef } from "react";
 import { useTranslation } from "react-i18next";
 import { data, Form } from "react-router";
 import type { Route } from "./+types/form-try";
@@ -65,13 +66,20 @@ function jsonIn(text: string): unknown {
 
 export default function FormTry({ loaderData, actionData }: Route.ComponentProps) {
 	const { t } = useTranslation("forms");
+	const box = useRef<HTMLDivElement>(null);
+	// The button that led here is gone, or below the screen that it brought; a problem or a check has the focus already.
+	useEffect(() => {
+		if (!actionData || !box.current || box.current.contains(document.activeElement)) return;
+		box.current.focus({ preventScroll: true });
+		box.current.scrollIntoView();
+	}, [actionData]);
 	if (!loaderData.hasQuestions) return <p>{t("try.nothing")}</p>;
 	const { tried, crops: chosen } = actionData ?? { tried: undefined, crops: cropKeys.slice(0, 2) as string[] };
 	return (
 		<>
 			<Notice tone="info">{t("try.nothingKept")}</Notice>
 			{tried && tried.at !== "nothing" ? (
-				<div className="max-w-[40rem] border-2 border-line p-5 text-lg">
+				<div ref={box} tabIndex={-1} className="max-w-[40rem] border-2 border-line p-5 text-lg">
 					<TriedStep tried={tried} crops={chosen} />
 				</div>
 			) : null}
