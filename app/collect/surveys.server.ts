@@ -83,11 +83,11 @@ function selectSurveys(trx: Trx, viewer: Associate) {
 				.where("f.state_fips", "in", viewer.stateFips)
 				.as("in_frame"),
 			eb
-				.selectFrom("collect.response as r")
-				.select(sql<number>`count(*)`.as("n"))
-				.whereRef("r.survey_id", "=", "s.survey_id")
-				.where("r.state_fips", "in", viewer.stateFips)
-				.where("r.submitted_at", "is not", null)
+				.selectFrom("collect.answered_count as a")
+				.select(sql<number>`sum(a.operations)::int`.as("n"))
+				.whereRef("a.survey_id", "=", "s.survey_id")
+				.where("a.crop_key", "=", "all")
+				.where("a.state_fips", "in", viewer.stateFips)
 				.as("answered"),
 		]);
 }
