@@ -261,6 +261,7 @@ export interface CollectFormDraft {
 }
 
 export interface CollectFormVersion {
+  coded_questions: Generated<string[]>;
   created_at: Generated<Timestamp>;
   definition: Json;
   form_id: string;
@@ -483,6 +484,18 @@ export interface CollectTally {
   sum_y: number;
   survey_id: string;
   unanswered: number;
+}
+
+export interface CollectWordTold {
+  codes: string[] | null;
+  county_fips: string;
+  operation_id: string;
+  planting_id: string | null;
+  question_key: string;
+  response_id: string;
+  state_fips: string;
+  survey_id: string;
+  words: string;
 }
 
 export interface DirectoryCounty {
@@ -903,6 +916,7 @@ export interface DB {
   "collect.survey_brief": CollectSurveyBrief;
   "collect.survey_state": CollectSurveyState;
   "collect.tally": CollectTally;
+  "collect.word_told": CollectWordTold;
   "directory.county": DirectoryCounty;
   "directory.county_neighbor": DirectoryCountyNeighbor;
   "directory.crop": DirectoryCrop;

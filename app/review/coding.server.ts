@@ -27,53 +27,41 @@ export type ToldInWords = {
 	codedAt: Date | null;
 };
 
-/**
- * The one place that says what was told in words in a survey, as it was sent in last, that the viewer can see. Words are few
- * among answers: they are gathered first, and what they are about is then looked up for each by its key. Left to itself the
- * planner, which cannot know how few, went through all growers for each (50,000 operations: 30 s and more).
- */
-function toldIn(viewer: Associate, surveyId: string, questionKeys: string[], responseId?: string) {
-	return sql`told as materialized (select r.response_id, r.survey_id, r.operation_id, a.told
-		from collect.response r
-		cross join lateral (select answers from collect.submission b where b.response_id = r.response_id
-			and b.withdrawn_at is null and not b.late order by b.version desc limit 1) sent
-		cross join lateral jsonb_array_elements(sent.answers -> 'answers') a(told)
-		where r.survey_id = ${surveyId} and r.submitted_at is not null and r.state_fips = any (${viewer.stateFips}::text[])
-			and a.told ->> 'questionKey' = any (${questionKeys}::text[]) and a.told ->> 'kind' = 'given'
-			and ${responseId === undefined ? sql`true` : sql`r.response_id = ${responseId}`}),
-	decided as materialized (select a.*, d.number, d.act, d.answer, d.made_by, d.made_at,
-			coalesce(d.act = 'coded' and d.was -> 'value' = a.told -> 'value', false) as is_coded
-		from told a left join lateral (select * from collect.correction x where x.response_id = a.response_id
-			and x.question_key = a.told ->> 'questionKey'
-			and x.planting_id is not distinct from (a.told ->> 'plantingId')::uuid order by x.number desc limit 1) d on true)`;
-}
+/** The one place that says whose words an associate can see; which words there are is kept (`collect.word_told`). */
+const toldIn = (viewer: Associate, surveyId: string, questionKeys: string[]) => sql`collect.word_told w
+	where w.survey_id = ${surveyId} and w.state_fips = any (${viewer.stateFips}::text[])
+		and w.question_key = any (${questionKeys}::text[])`;
 
-/** Whose words they are, and about what. */
-const withGrowers = sql`decided d
-	cross join lateral (select f.county_fips, f.state_fips from collect.frame_operation f
-		where f.survey_id = d.survey_id and f.operation_id = d.operation_id limit 1) f
-	cross join lateral (select o.name from directory.operation o where o.operation_id = d.operation_id limit 1) o
-	join directory.county c on c.county_fips = f.county_fips
-	join directory.state s on s.state_fips = f.state_fips
-	left join lateral (select p.crop_key from directory.planting p
-		where p.planting_id = (d.told ->> 'plantingId')::uuid limit 1) p on true
+/**
+ * Whose words they are, and about what, of the few that are shown. Each is looked up by its key: the planner cannot know how few
+ * they are, and went through all growers for each (50,000 operations: 30 s and more).
+ */
+const besideWords = sql`
+	join directory.county c on c.county_fips = w.county_fips
+	join directory.state s on s.state_fips = w.state_fips
+	left join lateral (select p.crop_key from directory.planting p where p.planting_id = w.planting_id limit 1) p on true
+	left join lateral (select x.number, x.act, x.made_by, x.made_at from collect.correction x
+		where x.response_id = w.response_id and x.question_key = w.question_key
+			and x.planting_id is not distinct from w.planting_id order by x.number desc limit 1) d on true
 	left join auth.person b on b.person_id = d.made_by`;
 
-const columns = sql`d.response_id as "responseId", d.operation_id as "operationId",
-	o.name as "operationName", c.name as "countyName", s.postal as "statePostal", s.state_fips as "stateFips",
-	s.time_zone as "timeZone", d.told ->> 'questionKey' as "questionKey", d.told ->> 'plantingId' as "plantingId",
-	p.crop_key as "cropKey", d.told ->> 'value' as words, coalesce(d.number, 0) as seen,
-	case when d.is_coded then d.answer -> 'codes' end as codes,
+const columns = sql`w.response_id as "responseId", w.operation_id as "operationId",
+	w.name as "operationName", c.name as "countyName", s.postal as "statePostal", s.state_fips as "stateFips",
+	s.time_zone as "timeZone", w.question_key as "questionKey", w.planting_id as "plantingId",
+	p.crop_key as "cropKey", w.words, coalesce(d.number, 0) as seen, w.codes,
 	case when d.act = 'coded' then b.display_name end as "codedBy",
 	case when d.act = 'coded' then d.made_at end as "codedAt"`;
+
+const operationName = sql`cross join lateral (select o.name from directory.operation o
+	where o.operation_id = w.operation_id limit 1) o`;
 
 const byPlace: Order = {
 	keys: [
 		{ by: sql.ref("c.name"), kind: "text" },
 		{ by: sql.ref("o.name"), kind: "text" },
-		{ by: sql.ref("d.response_id"), kind: "uuid" },
-		{ by: sql`coalesce(d.told ->> 'plantingId', '')`, kind: "text" },
-		{ by: sql`(d.told ->> 'questionKey')`, kind: "text" },
+		{ by: sql.ref("w.response_id"), kind: "uuid" },
+		{ by: sql`coalesce(w.planting_id::text, '')`, kind: "text" },
+		{ by: sql.ref("w.question_key"), kind: "text" },
 	],
 	direction: "asc",
 };
@@ -86,9 +74,13 @@ export async function listToldInWords(
 	{ questionKeys, show, ...beside }: Beside & { questionKeys: string[]; show: "open" | "done" },
 ): Promise<PageByKey<ToldInWords>> {
 	const read = async ({ beyond, inOrder, place, limit }: PagePart) => {
-		const { rows } = await sql<ToldInWords & { place: Place }>`with ${toldIn(viewer, surveyId, questionKeys)}
-			select ${columns}, ${place} as place from ${withGrowers}
-			where d.is_coded = ${show === "done"} and ${beyond} order by ${inOrder} limit ${limit}`.execute(trx);
+		const { rows } = await sql<ToldInWords & { place: Place }>`with
+			told as materialized (select w.* from ${toldIn(viewer, surveyId, questionKeys)}
+				and (w.codes is not null) = ${show === "done"}),
+			shown as materialized (select w.*, o.name, ${place} as place, row_number() over (order by ${inOrder}) as at
+				from told w join directory.county c on c.county_fips = w.county_fips ${operationName}
+				where ${beyond} order by ${inOrder} limit ${limit})
+			select ${columns}, w.place from shown w ${besideWords} order by w.at`.execute(trx);
 		return rows;
 	};
 	return pageByKey(byPlace, beside, pageSize, read);
@@ -97,11 +89,11 @@ export async function listToldInWords(
 /** How many words have no code yet, how many have one or were left as they are, and those that have one with it, each once. */
 export async function countToldInWords(trx: Trx, viewer: Associate, surveyId: string, questionKeys: string[]) {
 	type Told = { open: number; done: number; coded: { words: string; codes: string[] }[] };
-	const { rows } = await sql<Told>`with ${toldIn(viewer, surveyId, questionKeys)}
-		select (count(*) filter (where not is_coded))::int as open, (count(*) filter (where is_coded))::int as done,
-			coalesce(jsonb_agg(distinct jsonb_build_object('words', told ->> 'value', 'codes', answer -> 'codes'))
-				filter (where is_coded and answer -> 'codes' <> '[]'), '[]') as coded
-		from decided`.execute(trx);
+	const { rows } = await sql<Told>`
+		select (count(*) filter (where w.codes is null))::int as open, (count(w.codes))::int as done,
+			coalesce(jsonb_agg(distinct jsonb_build_object('words', w.words, 'codes', w.codes)) filter (where w.codes <> '{}'), '[]')
+				as coded
+		from ${toldIn(viewer, surveyId, questionKeys)}`.execute(trx);
 	return rows[0]!;
 }
 
@@ -112,7 +104,8 @@ export async function listWordsOfResponse(
 	surveyId: string,
 	{ questionKeys, responseId }: { questionKeys: string[]; responseId: string },
 ): Promise<ToldInWords[]> {
-	const { rows } = await sql<ToldInWords>`with ${toldIn(viewer, surveyId, questionKeys, responseId)}
-		select ${columns} from ${withGrowers}`.execute(trx);
+	const { rows } = await sql<ToldInWords>`with told as materialized (select w.*, o.name
+			from (select w.* from ${toldIn(viewer, surveyId, questionKeys)} and w.response_id = ${responseId}) w ${operationName})
+		select ${columns} from told w ${besideWords}`.execute(trx);
 	return rows;
 }

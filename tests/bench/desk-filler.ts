@@ -9,7 +9,8 @@ const states = ["17", "19"];
 /**
  * A desk with `size` operations in one associate's states: an open survey that asks all of them, the same of the season before,
  * three in five answers in, with facts and tallies, odd answers, words to code, contacts, mails and a log. Written as the
- * owner, past the triggers; what they would have kept is then made from nothing. Nothing is analyzed.
+ * owner, past the triggers; what they would have kept is then made from nothing. Nothing is analyzed but what the product itself
+ * has analyzed in such steps.
  */
 export async function fillDesk(owner: Client, size: number): Promise<FilledDesk> {
 	await owner.query("select setseed(0.2031)");
@@ -27,21 +28,24 @@ export async function fillDesk(owner: Client, size: number): Promise<FilledDesk>
 	const [last, surveyId] = (
 		await owner.query<{ survey_id: string }>(surveys, [JSON.stringify(afterHarvest), personId])
 	).rows.map(({ survey_id }) => survey_id) as [string, string];
-	const kept = ["frame_operation", "frame_crop", "response", "fact"];
+	const kept = ["frame_operation", "frame_crop", "response", "submission", "fact"];
 	for (const table of kept) await owner.query(`alter table collect.${table} disable trigger user`);
 	for (const survey of [last, surveyId]) {
 		await owner.query("insert into collect.survey_state select $1::uuid, unnest($2::text[])", [survey, states]);
 		await owner.query(frame, [survey]);
 		await owner.query(frameCrops, [survey]);
+		// As whoever opens a survey does.
+		await owner.query("select collect.know_frames()");
 		await owner.query(responses, [survey]);
 		await owner.query(submissions, [survey]);
 		await owner.query(facts, [survey, afterHarvest.measures.map(({ key }) => key)]);
 	}
 	for (const table of kept) await owner.query(`alter table collect.${table} enable trigger user`);
 	for (const survey of [last, surveyId])
-		await owner.query("select collect.recount_frame($1), collect.recount_answers($1), collect.retally_survey($1)", [
-			survey,
-		]);
+		await owner.query(
+			"select collect.recount_frame($1), collect.recount_answers($1), collect.recount_words($1), collect.retally_survey($1)",
+			[survey],
+		);
 	for (const query of [findings, contacts, mailings]) await owner.query(query, [surveyId, personId]);
 	await owner.query(events, [personId, size * 2]);
 	await owner.query(

@@ -86,6 +86,18 @@ const facts = async () =>
 		)
 	).rows;
 
+const words = async () =>
+	(
+		await owner.query("select * from collect.word_told where survey_id = $1 order by response_id, question_key", [
+			surveyId,
+		])
+	).rows;
+
+async function wordsToldAnew() {
+	await owner.query("select collect.recount_words($1)", [surveyId]);
+	return words();
+}
+
 const rebuilt = () =>
 	inNetwork(async (trx) => {
 		await trx.deleteFrom("collect.tally").where("survey_id", "=", surveyId).execute();
@@ -113,7 +125,7 @@ async function counts() {
 	return strata.map(({ respondents, frameSize }) => [respondents, frameSize]);
 }
 
-test("through a survey's whole life facts and tallies stay what the answers would make from nothing", async () => {
+test("through a survey's whole life facts, tallies and words to code stay what the answers would make from nothing", async () => {
 	const corrected: Closing = {
 		act: "correct",
 		version: 0,
@@ -159,8 +171,11 @@ test("through a survey's whole life facts and tallies stay what the answers woul
 		expect(await counts(), what).toEqual([count]);
 		const now = await kept();
 		expectSameTallies(await rebuilt(), now);
+		const told = await words();
+		expect(await wordsToldAnew(), what).toEqual(told);
 	}
 
+	expect(await words()).toMatchObject([{ words: "the cold", codes: ["cause_freeze"] }]);
 	const before = await facts();
 	const tallies = await kept();
 	expect(new Set(before.map((row) => row.operation_id)).size).toBe(9);

@@ -61,6 +61,7 @@ const guarded: Record<string, Guarded> = {
 	"collect.correction": { key: "response_id", desk: ["insert"], grower: ["insert"] },
 	"collect.fact": { key: "operation_id", state: "state_fips", desk: all, grower: all },
 	"collect.tally": { key: "measure_key", state: "state_fips", desk: all, grower: "nothing", deskReads: true },
+	"collect.word_told": { key: "response_id", state: "state_fips", desk: [], grower: "nothing", deskReads: true },
 	// Of a stratum that nobody else is in, so that the count is this operation's alone.
 	"collect.answered_count": {
 		key: "stratum_key",
@@ -100,6 +101,8 @@ const ownersRights: Record<string, string> = {
 	"collect.refuse_mixed_frame": "a trigger, which answers nothing",
 	"collect.refuse_rehearsal": "a trigger, which answers nothing",
 	"collect.rehearsal_of": "the id of a draft's rehearsal",
+	"collect.tell_words": "a trigger, which answers nothing",
+	"collect.tell_words_of_survey": "a trigger, which answers nothing",
 };
 
 /** Tables of the two schemas that hold no row of a grower. */

@@ -144,11 +144,18 @@ async function addHolder(owner: Client, { surveyId, draftId, personId }: Shared,
 		values ($1, $2, '19103', 'apple', '{}', 'sum')`,
 		[draftId, ownerId],
 	);
+	const findingId = await addFinding(owner, responseId, mailingId, personId);
+	await owner.query(
+		`insert into collect.word_told select response_id, 'other_cause', null, survey_id, operation_id, state_fips, county_fips,
+			'late frost', null from collect.response join collect.frame_operation using (survey_id, operation_id, state_fips)
+		where response_id = $1`,
+		[responseId],
+	);
 	return {
 		operation_id: operationId,
 		owner_id: ownerId,
 		response_id: responseId,
-		edit_finding_id: await addFinding(owner, responseId, mailingId, personId),
+		edit_finding_id: findingId,
 		release_draft_id: draftId,
 		measure_key: measureKey,
 		stratum_key: operationId,
