@@ -141,10 +141,18 @@ const byWorth: Order = {
 	direction: "asc",
 };
 
-/** How many calls were promised for today, or for a day that has gone by. */
+/**
+ * How many calls were promised for today, or for a day that has gone by. Those of whom any contact promised it are looked at one
+ * by one, not the whole frame; no state's clock is more than a day ahead.
+ */
 export async function countDueCalls(trx: Trx, viewer: Associate, surveyId: string): Promise<number> {
-	const { rows } = await sql<{ due: number }>`select count(*)::int as due
-		from ${waitedFor(viewer, surveyId)} and ${shown.due}`.execute(trx);
+	const { rows } = await sql<{ due: number }>`
+		with promised as materialized (select distinct n.operation_id from collect.contact n
+			where n.next_on <= (now() at time zone 'UTC')::date + 1 and (n.survey_id is null or n.survey_id = ${surveyId}))
+		select count(*)::int as due from promised p cross join lateral (
+			select from ${waitedFor(viewer, surveyId)} and f.operation_id = p.operation_id and ${shown.due} limit 1) due`.execute(
+		trx,
+	);
 	return rows[0]!.due;
 }
 

@@ -1,4 +1,5 @@
-import { type RawBuilder, sql } from "kysely";
+import { type ExpressionBuilder, type RawBuilder, sql } from "kysely";
+import type { DB } from "#db/schema.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import type { Answer } from "#app/collect/form.ts";
@@ -30,7 +31,7 @@ export async function findFinding(trx: Trx, viewer: Associate, surveyId: string,
 export async function countOpenFindings(trx: Trx, viewer: Associate): Promise<Map<string, number>> {
 	const rows = await trx
 		.selectFrom("collect.edit_finding as f")
-		.innerJoin("collect.response as r", "r.response_id", "f.response_id")
+		.innerJoinLateral(ofResponse, (join) => join.onTrue())
 		.where("r.state_fips", "in", viewer.stateFips)
 		.where("r.submitted_at", "is not", null)
 		.where("f.outcome", "is", null)
@@ -63,16 +64,41 @@ export async function didLastStep(trx: Trx, viewer: Associate, findingId: string
 	return last?.person_id === viewer.personId;
 }
 
+// Findings are few beside answers: what each is about is looked up by its key, which the planner takes for the longer way
+// (2,000 of 30,000 responses: 100 ms).
+type Expressions = ExpressionBuilder<DB & { f: DB["collect.edit_finding"] }, "f">;
+const ofResponse = (eb: Expressions) =>
+	eb
+		.selectFrom("collect.response as x")
+		.whereRef("x.response_id", "=", "f.response_id")
+		.select(["x.survey_id", "x.response_id", "x.operation_id", "x.state_fips", "x.submitted_at"])
+		.limit(1)
+		.as("r");
+type OfResponse = { survey_id: string; operation_id: string };
+const inFrame = (eb: ExpressionBuilder<DB & { r: OfResponse }, "r">) =>
+	eb
+		.selectFrom("collect.frame_operation as x")
+		.whereRef("x.survey_id", "=", "r.survey_id")
+		.whereRef("x.operation_id", "=", "r.operation_id")
+		.select(["x.state_fips", "x.county_fips", "x.stratum_key"])
+		.limit(1)
+		.as("o");
+const ofOperation = (eb: ExpressionBuilder<DB & { r: OfResponse }, "r">) =>
+	eb
+		.selectFrom("directory.operation as x")
+		.whereRef("x.operation_id", "=", "r.operation_id")
+		.select(["x.name", "x.contact_name", "x.phone"])
+		.limit(1)
+		.as("d");
+
 /** The one place that says whose findings an associate can see. */
 function selectFindings(trx: Trx, viewer: Associate, surveyId: string) {
 	return (
 		trx
 			.selectFrom("collect.edit_finding as f")
-			.innerJoin("collect.response as r", "r.response_id", "f.response_id")
-			.innerJoin("collect.frame_operation as o", (join) =>
-				join.onRef("o.survey_id", "=", "r.survey_id").onRef("o.operation_id", "=", "r.operation_id"),
-			)
-			.innerJoin("directory.operation as d", "d.operation_id", "r.operation_id")
+			.innerJoinLateral(ofResponse, (join) => join.onTrue())
+			.innerJoinLateral(inFrame, (join) => join.onTrue())
+			.innerJoinLateral(ofOperation, (join) => join.onTrue())
 			.innerJoin("directory.county as c", "c.county_fips", "o.county_fips")
 			.innerJoin("directory.state as s", "s.state_fips", "o.state_fips")
 			.leftJoin("directory.planting as p", "p.planting_id", "f.planting_id")
