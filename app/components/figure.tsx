@@ -36,7 +36,12 @@ export function Figure(props: FigureProps) {
 				{format.figure(value, measure)}
 			</strong>
 			{bounds && (
-				<span className={classes("text-quiet", headline ? "mt-2 block text-lg" : "ml-2 whitespace-nowrap text-xs")}>
+				<span
+					className={classes(
+						"text-quiet",
+						headline ? "mt-2 block text-lg" : "ml-2 text-xs whitespace-nowrap print:whitespace-normal",
+					)}
+				>
 					{bounds}
 				</span>
 			)}
