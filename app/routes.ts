@@ -192,6 +192,8 @@ export default [
 			route("reports/:reportId", "routes/network/report.tsx"),
 			route("reports/:reportId/photos/:photoId", "routes/network/report-photo-away.tsx"),
 			route("access", "routes/network/access.tsx"),
+			route("states", "routes/network/states.tsx"),
+			route("states/:stateFips", "routes/network/districts.tsx"),
 			route("settings", "routes/network/settings.tsx"),
 			route("impact", "routes/network/impact.tsx"),
 			route("log", "routes/network/log.tsx"),

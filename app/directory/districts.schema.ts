@@ -7,3 +7,7 @@ export const DistrictsForm = z.object({
 	district: z.record(z.string().regex(/^[0-9]{5}$/), z.string().trim().max(60).default("")).default({}),
 });
 export type DistrictsForm = z.infer<typeof DistrictsForm>;
+
+/** The names that were typed, without the empty boxes, as they go back into the boxes. */
+export const typedOf = ({ district }: DistrictsForm): Record<string, string> =>
+	Object.fromEntries(Object.entries(district).filter(([, name]) => name !== ""));

@@ -1,8 +1,8 @@
 import { createHash } from "node:crypto";
 import { sql } from "kysely";
 import { z } from "zod";
-import type { Trx } from "#app/auth/scope.server.ts";
-import type { Associate } from "#app/auth/viewer.ts";
+import { type Trx, underScope } from "#app/auth/scope.server.ts";
+import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { type DistrictNames, districtsOf } from "./districts.ts";
 
 export type StateDistricts = {
@@ -14,15 +14,25 @@ export type StateDistricts = {
 	version: number;
 	lastChange: { changedBy: string; changedAt: Date } | null;
 };
+
+/** Associates group the counties of their states, a coordinator those of every state. */
+const reaches = (viewer: Associate | Coordinator, stateFips: string) =>
+	viewer.role === "coordinator" || viewer.stateFips.includes(stateFips);
+
+/** A coordinator's own scope has no state; for a state's districts it is that of a desk of that state alone. */
+function inState<T>(trx: Trx, viewer: Associate | Coordinator, stateFips: string, work: () => Promise<T>): Promise<T> {
+	return viewer.role === "coordinator" ? underScope(trx, { kind: "desk", stateFips: [stateFips] }, work) : work();
+}
+
 const Before = z.array(z.tuple([z.string(), z.string().nullable()]));
 
 /** How the counties of a state are grouped, or undefined where the state is not the viewer's. */
 export async function findStateDistricts(
 	trx: Trx,
-	viewer: Associate,
+	viewer: Associate | Coordinator,
 	stateFips: string,
 ): Promise<StateDistricts | undefined> {
-	if (!viewer.stateFips.includes(stateFips)) return undefined;
+	if (!reaches(viewer, stateFips)) return undefined;
 	const counties = await trx
 		.selectFrom("directory.county as c")
 		.leftJoin("directory.district as d", "d.district_key", "c.district_key")
@@ -31,7 +41,7 @@ export async function findStateDistricts(
 		.orderBy("c.name")
 		.execute();
 	if (counties.length === 0) return undefined;
-	const last = await findLastChange(trx, stateFips);
+	const last = await inState(trx, viewer, stateFips, () => findLastChange(trx, stateFips));
 	return {
 		stateFips,
 		counties,
@@ -66,32 +76,39 @@ export type Redrawn = "redrawn" | "unchanged" | "changed_meanwhile" | "not_found
 /**
  * Groups a state's counties anew, for drafts to come. A group of other counties than before is another district with a key of
  * its own, even under the same name: figures of two seasons are never compared as of one area where they are not.
- * @param seen the version that was shown when the grouping was made; another associate's change since is not written over.
+ * @param seen the version that was shown when the grouping was made; a change by somebody else since is not written over.
  */
 export async function redrawDistricts(
 	trx: Trx,
-	viewer: Associate,
+	viewer: Associate | Coordinator,
 	{ stateFips, names, seen }: { stateFips: string; names: DistrictNames; seen: number },
 ): Promise<Redrawn> {
-	if (!viewer.stateFips.includes(stateFips)) return "not_found";
+	if (!reaches(viewer, stateFips)) return "not_found";
 	await sql`select pg_advisory_xact_lock(hashtextextended(${`districts ${stateFips}`}, 0))`.execute(trx);
 	const now = await findStateDistricts(trx, viewer, stateFips);
 	if (!now) return "not_found";
 	if (now.version !== seen) return "changed_meanwhile";
 	const before = now.counties.map(({ countyFips, district }) => [countyFips, district] as const);
 	if (before.every(([county, district]) => (names.get(county) ?? null) === district)) return "unchanged";
-	await trx
-		.insertInto("directory.district_change")
-		.values({ state_fips: stateFips, before: JSON.stringify(before), changed_by: viewer.personId })
-		.execute();
-	await writeDistricts(trx, stateFips, names);
+	await inState(trx, viewer, stateFips, async () => {
+		await trx
+			.insertInto("directory.district_change")
+			.values({ state_fips: stateFips, before: JSON.stringify(before), changed_by: viewer.personId })
+			.execute();
+		await writeDistricts(trx, stateFips, names);
+	});
 	return "redrawn";
 }
 
 /** Takes the last change of a state's districts back, which is one more change. */
-export async function undoRedrawing(trx: Trx, viewer: Associate, stateFips: string, seen: number): Promise<Redrawn> {
-	if (!viewer.stateFips.includes(stateFips)) return "not_found";
-	const last = await findLastChange(trx, stateFips);
+export async function undoRedrawing(
+	trx: Trx,
+	viewer: Associate | Coordinator,
+	stateFips: string,
+	seen: number,
+): Promise<Redrawn> {
+	if (!reaches(viewer, stateFips)) return "not_found";
+	const last = await inState(trx, viewer, stateFips, () => findLastChange(trx, stateFips));
 	if (!last) return "not_found";
 	const names = new Map(Before.parse(last.before).flatMap(([county, name]) => (name === null ? [] : [[county, name]])));
 	return redrawDistricts(trx, viewer, { stateFips, names, seen });

@@ -1,10 +1,21 @@
 import { sql } from "kysely";
 import { beforeEach, expect, test } from "vitest";
-import type { Associate } from "#app/auth/viewer.ts";
+import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
+import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { findStateDistricts, redrawDistricts, undoRedrawing } from "#app/directory/districts.server.ts";
-import { asDesk, openSurveysDatabase } from "./surveys-fixture.ts";
+import { listNetworkStates } from "#app/directory/network-states.server.ts";
+import { carryOut, readTyped } from "#app/directory/redrawing.server.ts";
+import { addPerson, asDesk, openSurveysDatabase } from "./surveys-fixture.ts";
 
 const { owner, iowa, wisconsin } = await openSurveysDatabase();
+const { personId } = await addPerson(owner, "Marit Osgood", []);
+const coordinator: Coordinator = {
+	role: "coordinator",
+	personId,
+	displayName: "Marit Osgood",
+	email: null,
+	language: null,
+};
 
 beforeEach(async () => {
 	await owner.query("update directory.county set district_key = null where state_fips = '19'");
@@ -70,4 +81,37 @@ test("another state's districts are not found, and the database refuses to write
 	await redraw({}, 0);
 	expect(await seenBy(iowa)).toEqual([{ state_fips: "19" }]);
 	expect(await seenBy(wisconsin)).toEqual([]);
+});
+
+/** As the guard gives it: a desk with no state. */
+const asCoordinator = <T>(work: (trx: Trx) => Promise<T>) => scopedTransaction({ kind: "desk", stateFips: [] }, work);
+
+test("a coordinator groups the counties of any state, which the log tells", async () => {
+	const names = new Map([
+		["19001", "West"],
+		["19003", "West"],
+		["19005", "West"],
+	]);
+	const decided = { decision: "save", seen: 0, names } as const;
+	expect(await asCoordinator((trx) => carryOut(trx, coordinator, "19", decided))).toBe("redrawn");
+	expect(await keys()).toMatchObject({ "19005": { name: "West" } });
+	const { rows } = await owner.query("select person_id, state_fips from log.event where action = 'district.redrawn'");
+	expect(rows).toEqual([{ person_id: coordinator.personId, state_fips: "19" }]);
+	const state = (await asCoordinator((trx) => listNetworkStates(trx, coordinator))).find(
+		(one) => one.stateFips === "19",
+	);
+	const [seen] = (await owner.query("select max(district_change_id) as seen from directory.district_change")).rows;
+	const undo = { decision: "undo", seen: seen.seen, names: new Map() } as const;
+	expect(await asCoordinator((trx) => carryOut(trx, coordinator, "19", undo))).toBe("redrawn");
+	expect(await keys()).toMatchObject({ "19005": null });
+	expect(state).toMatchObject({ districts: 1, redrawnAt: expect.any(Date) });
+});
+
+test("a county of another state and a district of one county are refused", async () => {
+	const state = (await asDesk(iowa, (trx) => findStateDistricts(trx, iowa, "19")))!;
+	const typed = (district: Record<string, string>) => readTyped(state, { decision: "save", seen: 0, district });
+	expect(typed({ "55001": "West" })).toBe("not_found");
+	expect(typed({ "19001": "West", "19003": "" })).toMatchObject({
+		problems: [{ field: "district.19001", code: "district_single" }],
+	});
 });

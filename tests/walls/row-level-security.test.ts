@@ -124,7 +124,8 @@ const guardedWrites: Record<string, string> = {
 	"directory.county": "every county, with its district: the same",
 	"collect.survey_brief":
 		"why a survey is asked: tests/database/survey-life.test.ts, read at the desks of its states alone",
-	"directory.district_change": "how a state's counties were grouped before: the same, read at its desks alone",
+	"directory.district_change":
+		"how a state's counties were grouped before: the same, read at its desks, by a coordinator as there",
 	"collect.form": "which forms there are: tests/database/forms-editor.test.ts",
 	"collect.form_version": "questions, not answers: the same",
 	"collect.form_draft": "questions being written, which growers do not see: the same",

@@ -2,20 +2,19 @@ import { useTranslation } from "react-i18next";
 import { data, Form, redirect } from "react-router";
 import { z } from "zod";
 import type { Route } from "./+types/districts";
-import { logEvent } from "#app/auth/event-log.server.ts";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { Button } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
-import { Confirm } from "#app/components/confirm.tsx";
-import { ErrorSummary } from "#app/components/error-summary.tsx";
+import type { Grouping } from "#app/components/districts/district-map.tsx";
+import { DistrictTable } from "#app/components/districts/district-table.tsx";
+import { LastChange } from "#app/components/districts/last-change.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Page } from "#app/components/page.tsx";
-import { Section } from "#app/components/section.tsx";
-import { DistrictsForm } from "#app/directory/districts.schema.ts";
-import { findStateDistricts, redrawDistricts, undoRedrawing } from "#app/directory/districts.server.ts";
-import { type DistrictNames, districtProblems, districtsOf, nameDistricts } from "#app/directory/districts.ts";
-import { countyName } from "#app/i18n/county-name.ts";
+import { DistrictsForm, typedOf } from "#app/directory/districts.schema.ts";
+import { findStateDistricts } from "#app/directory/districts.server.ts";
+import { type DistrictNames, districtsOf, nameDistricts } from "#app/directory/districts.ts";
+import { carryOut, namesNow, readTyped } from "#app/directory/redrawing.server.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { getLanguage, getT } from "#app/i18n/middleware.server.ts";
 import { lookAgain } from "#app/lib/look-again.ts";
@@ -25,9 +24,6 @@ import { countGrouping, type DistrictProposal, proposeDistricts } from "#app/pro
 import { pictureOf } from "#app/publish/picture.server.ts";
 import { addressOf } from "./parts/districts/address.ts";
 import { BeforeAndAfter } from "./parts/districts/before-and-after.tsx";
-import { CountyNames } from "./parts/districts/county-names.tsx";
-import type { Grouping } from "./parts/districts/district-map.tsx";
-import { LastChange } from "./parts/districts/last-change.tsx";
 import { readJudgedBy } from "./parts/districts/grouping.server.ts";
 
 /** `?state=&survey=&propose=1`: whose counties, by which answers, and whether the boxes hold the proposal. */
@@ -81,32 +77,19 @@ export async function action({ context, request }: Route.ActionArgs) {
 	const form = parseForm(DistrictsForm, await request.formData());
 	if (!form.ok) return data({ typed: null, problems: form.problems, preview: null, meanwhile: false }, { status: 400 });
 	const { decision, seen } = form.value;
-	const names = new Map(Object.entries(form.value.district).filter(([, name]) => name !== ""));
-	const typed = Object.fromEntries(names);
+	const typed = typedOf(form.value);
 	const answer = await desk.transaction(async (trx) => {
 		const state = await findStateDistricts(trx, desk.viewer, stateFips);
 		if (!state) return "not_found";
-		const known = new Set(state.counties.map(({ countyFips }) => countyFips));
-		if ([...names.keys()].some((county) => !known.has(county))) return "not_found";
-		const problems = decision === "undo" ? [] : districtProblems(names, state.neighborsOf);
+		const read = readTyped(state, form.value);
+		if (read === "not_found") return read;
+		const { names, problems } = read;
 		if (problems.length > 0) return { problems };
 		if (decision === "preview") {
 			const { input } = await readJudgedBy(trx, desk.viewer, query.survey, { state, names });
 			return { preview: input ? groupingOf(names, countGrouping(input)) : null };
 		}
-		const outcome =
-			decision === "undo"
-				? await undoRedrawing(trx, desk.viewer, stateFips, seen)
-				: await redrawDistricts(trx, desk.viewer, { stateFips, names, seen });
-		if (outcome === "redrawn")
-			await logEvent(trx, {
-				personId: desk.viewer.personId,
-				action: decision === "undo" ? "district.put_back" : "district.redrawn",
-				subjectKind: "state",
-				subjectId: stateFips,
-				stateFips,
-			});
-		return outcome;
+		return carryOut(trx, desk.viewer, stateFips, { decision, seen, names });
 	});
 	if (answer === "not_found") throw refusal("page_not_found");
 	if (answer === "changed_meanwhile")
@@ -134,9 +117,6 @@ function judgedOf(
 	};
 }
 
-const namesNow = ({ counties }: { counties: { countyFips: string; district: string | null }[] }) =>
-	new Map(counties.flatMap(({ countyFips, district }) => (district === null ? [] : [[countyFips, district] as const])));
-
 function groupingOf(names: DistrictNames, { shown, withheld, told, untold }: Omit<Grouping, "districts">): Grouping {
 	return { districts: districtsOf(names), shown, withheld, told, untold };
 }
@@ -147,19 +127,6 @@ export default function Districts({ loaderData, actionData }: Route.ComponentPro
 	const { t } = useTranslation("districts");
 	const { counties, version, lastChange, judged, proposes, stateFips, surveyId } = loaderData;
 	const proposed = judged?.proposed;
-	const countyNow = new Map(counties.map(({ countyFips, district }) => [countyFips, district ?? ""]));
-	const filled = actionData?.typed ?? (proposes ? proposed?.names : undefined);
-	const typed = (fips: string) => (filled ? (filled[fips] ?? "") : (countyNow.get(fips) ?? ""));
-	const rows = counties.map(({ countyFips, name, district }) => ({
-		countyFips,
-		name,
-		now: district,
-		typed: typed(countyFips),
-	}));
-	const names = [...new Set([...countyNow.values(), ...Object.values(proposed?.names ?? {})])]
-		.filter(Boolean)
-		.toSorted();
-	const problems = actionData?.problems;
 	return (
 		<Page title={t("title")} lead={t("lead")}>
 			<Choices loaderData={loaderData} />
@@ -173,40 +140,19 @@ export default function Districts({ loaderData, actionData }: Route.ComponentPro
 				preview={actionData?.preview ?? null}
 				proposal={addressOf({ state: stateFips, survey: surveyId, propose: true })}
 			/>
-			<Section title={t("table.title")}>
-				<p className="mb-4 max-w-prose">{t("table.lead")}</p>
-				<ErrorSummary
-					problems={problems}
-					labels={Object.fromEntries(
-						counties.map(({ countyFips, name }) => [
-							`district.${countyFips}`,
-							t("table.boxLabel", { county: countyName(t, { name, countyFips }) }),
-						]),
-					)}
-				/>
-				<Form
-					key={`${stateFips} ${version} ${proposes}`}
-					method="post"
-					action={addressOf({ state: stateFips, survey: surveyId })}
-					noValidate
-				>
-					<input type="hidden" name="seen" value={version} />
-					<CountyNames rows={rows} names={names} problems={problems} />
-					<div className="mt-5 flex flex-wrap gap-3">
-						<Button kind="secondary" name="decision" value="preview">
-							{t("preview")}
-						</Button>
-						<Confirm
-							trigger={t("save")}
-							title={t("confirm.title")}
-							body={t("confirm.body")}
-							confirmLabel={t("save")}
-							name="decision"
-							value="save"
-						/>
-					</div>
-				</Form>
-			</Section>
+			<DistrictTable
+				counties={counties}
+				filled={actionData?.typed ?? (proposes ? proposed?.names : undefined)}
+				names={Object.values(proposed?.names ?? {})}
+				version={version}
+				action={addressOf({ state: stateFips, survey: surveyId })}
+				problems={actionData?.problems}
+				formKey={`${stateFips} ${version} ${proposes}`}
+			>
+				<Button kind="secondary" name="decision" value="preview">
+					{t("preview")}
+				</Button>
+			</DistrictTable>
 			{lastChange && (
 				<LastChange change={lastChange} version={version} action={addressOf({ state: stateFips, survey: surveyId })} />
 			)}

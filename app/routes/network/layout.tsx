@@ -40,6 +40,7 @@ function NetworkFrame({ children }: { children: ReactNode }) {
 				{ to: "/network", label: t("nav.people"), end: true },
 				{ to: "/network/releases", label: t("nav.releases") },
 				{ to: "/network/reports", label: t("nav.reports") },
+				{ to: "/network/states", label: t("nav.states") },
 				{ to: "/network/access", label: t("nav.access") },
 				{ to: "/network/impact", label: t("nav.impact") },
 				{ to: "/network/settings", label: t("nav.settings") },

@@ -4,7 +4,7 @@ import { EmptyState } from "#app/components/empty-state.tsx";
 import type { DrawnPicture } from "#app/components/map/static-map.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
-import { DistrictLegend, DistrictMap, type Grouping } from "./district-map.tsx";
+import { DistrictLegend, DistrictMap, type Grouping } from "#app/components/districts/district-map.tsx";
 
 type Judged = { picture: DrawnPicture; now: Grouping; proposed: Grouping };
 

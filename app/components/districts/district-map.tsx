@@ -19,10 +19,13 @@ export function DistrictMap({
 	picture,
 	grouping,
 	title,
+	label,
 }: {
 	picture: DrawnPicture;
 	grouping: Grouping;
 	title: string;
+	/** What the picture tells in words, where it does not tell of answers. */
+	label?: string;
 }) {
 	const { t } = useTranslation("districts");
 	const id = useId();
@@ -40,7 +43,7 @@ export function DistrictMap({
 			<svg
 				viewBox={`0 0 ${picture.width} ${picture.height}`}
 				role="img"
-				aria-label={`${title}: ${t("mapLabel", { told: told.size, untold: untold.size })}`}
+				aria-label={`${title}: ${label ?? t("mapLabel", { told: told.size, untold: untold.size })}`}
 				className="block h-auto max-h-[32rem] w-full"
 			>
 				<MapPatterns id={id} />
