@@ -73,3 +73,8 @@ export async function underScope<T>(trx: Trx, scope: Scope, work: () => Promise<
 		set_config('tallygrove.operations', ${own?.operations ?? ""}, true)`.execute(trx);
 	return result;
 }
+
+/** A coordinator's own scope has no state: what belongs to a state is done under that of a desk of this state alone. */
+export function inState<T>(trx: Trx, stateFips: string, work: () => Promise<T>): Promise<T> {
+	return underScope(trx, { kind: "desk", stateFips: [stateFips] }, work);
+}

@@ -1,7 +1,7 @@
 import { createHash } from "node:crypto";
 import { sql } from "kysely";
 import { z } from "zod";
-import { type Trx, underScope } from "#app/auth/scope.server.ts";
+import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { type DistrictNames, districtsOf } from "./districts.ts";
 
@@ -15,14 +15,9 @@ export type StateDistricts = {
 	lastChange: { changedBy: string; changedAt: Date } | null;
 };
 
-/** Associates group the counties of their states, a coordinator those of every state. */
+/** Associates group the counties of their states; a coordinator, under the scope of a state, those of every state. */
 const reaches = (viewer: Associate | Coordinator, stateFips: string) =>
 	viewer.role === "coordinator" || viewer.stateFips.includes(stateFips);
-
-/** A coordinator's own scope has no state; for a state's districts it is that of a desk of that state alone. */
-function inState<T>(trx: Trx, viewer: Associate | Coordinator, stateFips: string, work: () => Promise<T>): Promise<T> {
-	return viewer.role === "coordinator" ? underScope(trx, { kind: "desk", stateFips: [stateFips] }, work) : work();
-}
 
 const Before = z.array(z.tuple([z.string(), z.string().nullable()]));
 
@@ -41,7 +36,7 @@ export async function findStateDistricts(
 		.orderBy("c.name")
 		.execute();
 	if (counties.length === 0) return undefined;
-	const last = await inState(trx, viewer, stateFips, () => findLastChange(trx, stateFips));
+	const last = await findLastChange(trx, stateFips);
 	return {
 		stateFips,
 		counties,
@@ -90,13 +85,11 @@ export async function redrawDistricts(
 	if (now.version !== seen) return "changed_meanwhile";
 	const before = now.counties.map(({ countyFips, district }) => [countyFips, district] as const);
 	if (before.every(([county, district]) => (names.get(county) ?? null) === district)) return "unchanged";
-	await inState(trx, viewer, stateFips, async () => {
-		await trx
-			.insertInto("directory.district_change")
-			.values({ state_fips: stateFips, before: JSON.stringify(before), changed_by: viewer.personId })
-			.execute();
-		await writeDistricts(trx, stateFips, names);
-	});
+	await trx
+		.insertInto("directory.district_change")
+		.values({ state_fips: stateFips, before: JSON.stringify(before), changed_by: viewer.personId })
+		.execute();
+	await writeDistricts(trx, stateFips, names);
 	return "redrawn";
 }
 
@@ -108,7 +101,7 @@ export async function undoRedrawing(
 	seen: number,
 ): Promise<Redrawn> {
 	if (!reaches(viewer, stateFips)) return "not_found";
-	const last = await inState(trx, viewer, stateFips, () => findLastChange(trx, stateFips));
+	const last = await findLastChange(trx, stateFips);
 	if (!last) return "not_found";
 	const names = new Map(Before.parse(last.before).flatMap(([county, name]) => (name === null ? [] : [[county, name]])));
 	return redrawDistricts(trx, viewer, { stateFips, names, seen });

@@ -1,9 +1,9 @@
 import { sql } from "kysely";
 import { beforeEach, expect, test } from "vitest";
-import { scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
+import { listNetworkStates } from "#app/auth/network-states.server.ts";
+import { inState, scopedTransaction, type Trx } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
 import { findStateDistricts, redrawDistricts, undoRedrawing } from "#app/directory/districts.server.ts";
-import { listNetworkStates } from "#app/directory/network-states.server.ts";
 import { carryOut, readTyped } from "#app/directory/redrawing.server.ts";
 import { addPerson, asDesk, openSurveysDatabase } from "./surveys-fixture.ts";
 
@@ -93,7 +93,9 @@ test("a coordinator groups the counties of any state, which the log tells", asyn
 		["19005", "West"],
 	]);
 	const decided = { decision: "save", seen: 0, names } as const;
-	expect(await asCoordinator((trx) => carryOut(trx, coordinator, "19", decided))).toBe("redrawn");
+	expect(await asCoordinator((trx) => inState(trx, "19", () => carryOut(trx, coordinator, "19", decided)))).toBe(
+		"redrawn",
+	);
 	expect(await keys()).toMatchObject({ "19005": { name: "West" } });
 	const { rows } = await owner.query("select person_id, state_fips from log.event where action = 'district.redrawn'");
 	expect(rows).toEqual([{ person_id: coordinator.personId, state_fips: "19" }]);
@@ -102,7 +104,9 @@ test("a coordinator groups the counties of any state, which the log tells", asyn
 	);
 	const [seen] = (await owner.query("select max(district_change_id) as seen from directory.district_change")).rows;
 	const undo = { decision: "undo", seen: seen.seen, names: new Map() } as const;
-	expect(await asCoordinator((trx) => carryOut(trx, coordinator, "19", undo))).toBe("redrawn");
+	expect(await asCoordinator((trx) => inState(trx, "19", () => carryOut(trx, coordinator, "19", undo)))).toBe(
+		"redrawn",
+	);
 	expect(await keys()).toMatchObject({ "19005": null });
 	expect(state).toMatchObject({ districts: 1, redrawnAt: expect.any(Date) });
 });

@@ -444,3 +444,23 @@ test("what differs between the releases of a table is told with their numbers", 
 	]);
 	expect((await page(search.replace(`,${other.number}`, ""))).notes).toEqual([]);
 });
+
+test("a table in which two things vary has a chart a season, on one scale of figures as released", async () => {
+	const { table } = await page(
+		`release=${first!.number},${second!.number}&measure=crop_loss&crop=apple&kind=county&state=19&columns=season`,
+	);
+	const charts = table?.charts;
+	if (!charts || typeof charts === "string") throw new Error(`no chart: ${charts}`);
+	expect(charts.map(({ season, drawn }) => [season, drawn.chart])).toEqual([
+		[2032, "areas"],
+		[2031, "areas"],
+	]);
+	const { table: one } = await page(
+		`release=${first!.number}&measure=crop_loss&crop=apple&kind=county&state=19&columns=season`,
+	);
+	expect(one?.charts).toEqual([{ ...charts[1]!, key: "" }]);
+	const { table: more } = await page(
+		`release=${first!.number},${second!.number}&measure=crop_loss,yield_per_tree&crop=apple&kind=county&state=19&columns=season`,
+	);
+	expect(more?.charts).toBe("several");
+});

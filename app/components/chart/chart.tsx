@@ -15,10 +15,12 @@ type ChartProps = {
 	season: number;
 	/** The page has a table of the same figures already. */
 	alone?: boolean;
+	/** What the scale must hold besides, so that charts beside each other can be compared. */
+	beside?: number[];
 };
 
 /** A chart under a title that says what it shows, how to read it, and the same figures as a table. */
-export function Chart({ drawn, season, alone }: ChartProps) {
+export function Chart({ drawn, season, alone, beside }: ChartProps) {
 	const { t } = useTranslation("report");
 	const finding = useFinding()(drawn);
 	const subject = useSubject(drawn, season);
@@ -31,7 +33,7 @@ export function Chart({ drawn, season, alone }: ChartProps) {
 					<p className="max-w-prose text-lg font-bold">{finding}</p>
 					<p className="text-sm text-quiet">{subject}</p>
 				</figcaption>
-				<Drawing drawn={drawn} alternative={alternative} />
+				<Drawing drawn={drawn} alternative={alternative} beside={beside} />
 				{drawn.chart === "causes" && <Key drawn={drawn} />}
 				<p className="mb-3 mt-2 max-w-prose text-sm text-quiet">
 					{t(`chart.read.${drawn.chart}`)} {isCareful(drawn) && t("chart.care")}
@@ -42,18 +44,18 @@ export function Chart({ drawn, season, alone }: ChartProps) {
 	);
 }
 
-function Drawing({ drawn, alternative }: { drawn: ResolvedChart; alternative: string }) {
+function Drawing({ drawn, ...said }: { drawn: ResolvedChart; alternative: string; beside?: number[] }) {
 	switch (drawn.chart) {
 		case "crops":
-			return <CropBars drawn={drawn} alternative={alternative} />;
+			return <CropBars drawn={drawn} {...said} />;
 		case "areas":
-			return <AreaDots drawn={drawn} alternative={alternative} />;
+			return <AreaDots drawn={drawn} {...said} />;
 		case "seasons":
-			return <SeasonLine drawn={drawn} alternative={alternative} />;
+			return <SeasonLine drawn={drawn} alternative={said.alternative} />;
 		case "windows":
-			return <DayStrips drawn={drawn} alternative={alternative} />;
+			return <DayStrips drawn={drawn} alternative={said.alternative} />;
 		case "causes":
-			return <CauseBars drawn={drawn} alternative={alternative} />;
+			return <CauseBars drawn={drawn} alternative={said.alternative} />;
 	}
 }
 

@@ -8,20 +8,25 @@ import { bandHeight, RowChart, Whisker } from "./row-chart.tsx";
 import { rangeOf } from "#app/lib/likely-range.ts";
 import { scaleOf } from "./scale.ts";
 
-type Drawn<K extends "crops" | "areas"> = { drawn: Extract<ResolvedChart, { chart: K }>; alternative: string };
+type Drawn<K extends "crops" | "areas"> = {
+	drawn: Extract<ResolvedChart, { chart: K }>;
+	alternative: string;
+	/** Values of charts beside this one, which stands on the same scale. */
+	beside?: number[];
+};
 
 /** Crops as bars from zero, each with its likely range; days, which have no zero, as dots. */
-export function CropBars({ drawn: { measure, rows }, alternative }: Drawn<"crops">) {
+export function CropBars({ drawn: { measure, rows }, ...said }: Drawn<"crops">) {
 	const { t } = useTranslation();
 	const named = rows.map((cell) => ({ key: cell.cropKey, label: t(`common:crop.${cell.cropKey}`), cell }));
-	return <ValueRows rows={named} measure={measure} bars={measure.unit !== "day"} alternative={alternative} />;
+	return <ValueRows rows={named} measure={measure} bars={measure.unit !== "day"} {...said} />;
 }
 
 /** Areas as dots with their likely range. */
-export function AreaDots({ drawn: { measure, rows }, alternative }: Drawn<"areas">) {
+export function AreaDots({ drawn: { measure, rows }, ...said }: Drawn<"areas">) {
 	const areaName = useAreaName();
 	const named = rows.map((cell) => ({ key: cell.areaKey, label: areaName(cell), cell }));
-	return <ValueRows rows={named} measure={measure} bars={false} alternative={alternative} />;
+	return <ValueRows rows={named} measure={measure} bars={false} {...said} />;
 }
 
 type ValueRowsProps = {
@@ -29,6 +34,7 @@ type ValueRowsProps = {
 	measure: Drawn<"crops">["drawn"]["measure"];
 	bars: boolean;
 	alternative: string;
+	beside?: number[];
 };
 
 /** So many rows without a number stand for themselves; more of one kind are one row, and the table names them all. */
@@ -45,12 +51,12 @@ function useJoined(rows: ValueRowsProps["rows"]): ValueRowsProps["rows"] {
 	return [...of("number"), ...joined];
 }
 
-function ValueRows({ rows: all, measure, bars, alternative }: ValueRowsProps) {
+function ValueRows({ rows: all, measure, bars, alternative, beside }: ValueRowsProps) {
 	const rows = useJoined(all);
 	const valueText = useValueText();
 	const tickText = useTickText();
 	const days = measure.unit === "day";
-	const values = numbered(rows.map(({ cell }) => cell)).flatMap(ends);
+	const values = [...numbered(rows.map(({ cell }) => cell)).flatMap(ends), ...(beside ?? [])];
 	const scale = scaleOf(days && values.length > 0 ? values : [...values, 0], {
 		zero: !days,
 		days,

@@ -13,7 +13,7 @@ import {
 	tableDimensions,
 	type TableSelection,
 } from "./selection.ts";
-import { chartOf, mapOf, type NoChart, type TableChart, type TableMap } from "./views.ts";
+import { chartsOf, mapOf, type NoChart, type TableChart, type TableMap } from "./views.ts";
 
 /** One page of a table, with the chart and the map of the whole. */
 export type ToldTable = Omit<LaidOut, "rows"> & {
@@ -26,7 +26,7 @@ export type ToldTable = Omit<LaidOut, "rows"> & {
 	kinds: AreaKind[];
 	page: number;
 	pageCount: number;
-	chart: TableChart | NoChart;
+	charts: TableChart[] | NoChart;
 	map: TableMap | null;
 };
 
@@ -69,7 +69,7 @@ function tellTable(
 			kinds: areaKinds.filter((kind) => records.some((record) => record.area_kind === kind)),
 			page,
 			pageCount,
-			chart: chartOf(catalogue, records),
+			charts: chartsOf(catalogue, records),
 			map: mapOf(catalogue, records),
 		},
 		problems: [],

@@ -1,3 +1,4 @@
+import { groupBy } from "#app/lib/group-by.ts";
 import { type AreaKind, type CropCell, lookOf, type MapCell } from "../cell.ts";
 import { classesOfCells, classOf, type MapClass } from "../classes.ts";
 import type { DataRecord } from "../data-file.ts";
@@ -33,22 +34,37 @@ export function toCell(record: DataRecord): CropCell {
 export const measureOf = ({ measures }: TableCatalogue, record: DataRecord): ReleaseMeasure | undefined =>
 	measures[record.release]?.find(({ key }) => key === record.measure);
 
-export type TableChart = { drawn: Extract<ResolvedChart, { chart: "crops" | "areas" | "seasons" }>; season: number };
-/** Why a table has no chart: more than one thing varies in it, nothing does, or it has too many lines. */
+export type TableChart = {
+	/** The season or crop that it is of, where there are several. */
+	key: string;
+	drawn: Extract<ResolvedChart, { chart: "crops" | "areas" | "seasons" }>;
+	season: number;
+};
+/** Why a table has no chart: too much varies in it, nothing does, or it has too many lines. */
 export type NoChart = "several" | "single" | "many";
 
-/** The chart that suits a table: crops as bars, areas as dots, or seasons as a line, whichever alone varies in it. */
-export function chartOf(catalogue: TableCatalogue, records: readonly DataRecord[]): TableChart | NoChart {
+/**
+ * The charts that suit a table: crops as bars, areas as dots, or seasons as a line, whichever alone varies in it. Where two
+ * vary, it is a chart a season, or a chart a crop, the latest and first chosen first.
+ */
+export function chartsOf(catalogue: TableCatalogue, records: readonly DataRecord[]): TableChart[] | NoChart {
 	const [first] = records;
 	const measure = first && measureOf(catalogue, first);
 	if (!first || !measure) return "single";
 	const varied = tableDimensions.filter((one) => new Set(records.map((record) => addressOf(record)[one])).size > 1);
-	const [varies] = varied;
-	if (varied.length > 1 || varies === "measure") return "several";
-	if (!varies) return "single";
+	if (varied.length === 0) return "single";
+	if (varied.length > 2 || varied.includes("measure")) return "several";
 	if (records.length > tableLimits.drawn) return "many";
-	const drawn = drawnOf(varies, catalogue, records, measure);
-	return drawn ? { drawn, season: first.season } : "several";
+	// By the order of the dimensions, seasons come before crops and crops before areas.
+	const varies = varied.at(-1) as "season" | "crop" | "area";
+	const apart = varied.length === 2 ? varied[0]! : null;
+	const parts = apart ? [...groupBy(records, (record) => addressOf(record)[apart]).values()] : [records];
+	if (apart === "season") parts.sort(([a], [b]) => b!.season - a!.season || b!.release - a!.release);
+	const charts = parts.flatMap((part) => {
+		const drawn = drawnOf(varies, catalogue, part, measureOf(catalogue, part[0]!) ?? measure);
+		return drawn ? [{ key: apart ? addressOf(part[0]!)[apart] : "", drawn, season: part[0]!.season }] : [];
+	});
+	return charts.length > 0 ? charts : "several";
 }
 
 function drawnOf(

@@ -2,6 +2,7 @@ import { useTranslation } from "react-i18next";
 import { data, href, Link, redirect } from "react-router";
 import type { Route } from "./+types/districts";
 import { requireCoordinator } from "#app/auth/guard.server.ts";
+import { inState } from "#app/auth/scope.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { DistrictMap } from "#app/components/districts/district-map.tsx";
 import { DistrictTable } from "#app/components/districts/district-table.tsx";
@@ -19,7 +20,9 @@ import { pictureOf } from "#app/publish/picture.server.ts";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
 	const network = requireCoordinator(context);
-	const state = await network.transaction((trx) => findStateDistricts(trx, network.viewer, params.stateFips));
+	const state = await network.transaction((trx) =>
+		inState(trx, params.stateFips, () => findStateDistricts(trx, network.viewer, params.stateFips)),
+	);
 	if (!state) throw refusal("page_not_found");
 	const { stateFips, counties, version, lastChange } = state;
 	return {
@@ -38,12 +41,14 @@ export async function action({ context, params, request }: Route.ActionArgs) {
 	const form = parseForm(DistrictsForm, await request.formData());
 	if (!form.ok) return data({ typed: null, problems: form.problems, meanwhile: false }, { status: 400 });
 	const typed = typedOf(form.value);
-	const answer = await network.transaction(async (trx) => {
-		const state = await findStateDistricts(trx, network.viewer, stateFips);
-		const read = state ? readTyped(state, form.value) : "not_found";
-		if (read === "not_found" || read.problems.length > 0) return read;
-		return carryOut(trx, network.viewer, stateFips, { ...form.value, names: read.names });
-	});
+	const answer = await network.transaction((trx) =>
+		inState(trx, stateFips, async () => {
+			const state = await findStateDistricts(trx, network.viewer, stateFips);
+			const read = state ? readTyped(state, form.value) : "not_found";
+			if (read === "not_found" || read.problems.length > 0) return read;
+			return carryOut(trx, network.viewer, stateFips, { ...form.value, names: read.names });
+		}),
+	);
 	if (answer === "not_found") throw refusal("page_not_found");
 	if (answer === "changed_meanwhile") return data({ typed, problems: [], meanwhile: true }, { status: 409 });
 	if (typeof answer === "object") return data({ typed, problems: answer.problems, meanwhile: false }, { status: 400 });

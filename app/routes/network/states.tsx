@@ -3,12 +3,12 @@ import { Form, href, Link, redirect } from "react-router";
 import { z } from "zod";
 import type { Route } from "./+types/states";
 import { requireCoordinator } from "#app/auth/guard.server.ts";
+import { listNetworkStates } from "#app/auth/network-states.server.ts";
 import { Button } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { DataTable } from "#app/components/data-table.tsx";
 import { Page } from "#app/components/page.tsx";
 import { Section } from "#app/components/section.tsx";
-import { listNetworkStates } from "#app/directory/network-states.server.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 
 /** `?open=`: the state whose districts are to be shown. */

@@ -2,12 +2,14 @@ import { useTranslation } from "react-i18next";
 import { useRevalidator } from "react-router";
 import { Button } from "#app/components/button.tsx";
 import { Chart } from "#app/components/chart/chart.tsx";
+import { ends, numbered } from "#app/components/chart/chart-look.ts";
 import { classes } from "#app/components/classes.ts";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
 import { countCells } from "#app/publish/tables/catalogue.ts";
 import { tableLimits } from "#app/publish/tables/limits.ts";
+import type { TableChart } from "#app/publish/tables/views.ts";
 import { TableDownloads } from "./table-downloads.tsx";
 import { TableGrid } from "./table-grid.tsx";
 import { TableMapView } from "./table-map.tsx";
@@ -44,17 +46,32 @@ function Told(props: ResultProps & { table: NonNullable<TablePage["table"]> }) {
 	return (
 		<>
 			<TableNotes notes={notes} catalogue={catalogue} />
-			{typeof table.chart === "string" ? (
+			{typeof table.charts === "string" ? (
 				<p className="mb-4 max-w-prose text-sm text-quiet">
-					{t(`tables.noChart.${table.chart}`, { max: tableLimits.drawn })}
+					{t(`tables.noChart.${table.charts}`, { max: tableLimits.drawn })}
 				</p>
 			) : (
-				<Chart {...table.chart} alone />
+				<Charts charts={table.charts} />
 			)}
 			{table.map && picture && <TableMapView map={table.map} picture={picture} catalogue={catalogue} />}
 			<TableGrid {...props} />
 			<TableDownloads {...props} />
 		</>
+	);
+}
+
+/** Charts of one table beside each other, on one scale where they are of one unit. */
+function Charts({ charts }: { charts: TableChart[] }) {
+	const besides = (unit: string) =>
+		charts.flatMap(({ drawn }) =>
+			drawn.chart === "seasons" || drawn.measure.unit !== unit ? [] : numbered(drawn.rows).flatMap(ends),
+		);
+	return (
+		<div className={classes(charts.length > 1 && "grid gap-x-10 lg:grid-cols-2")}>
+			{charts.map(({ key, ...chart }) => (
+				<Chart key={key} {...chart} beside={besides(chart.drawn.measure.unit)} alone />
+			))}
+		</div>
 	);
 }
 

@@ -1,7 +1,7 @@
 import { sql } from "kysely";
-import { grantHolds } from "#app/auth/grant-holds.server.ts";
-import { type Trx, underScope } from "#app/auth/scope.server.ts";
-import type { Coordinator } from "#app/auth/viewer.ts";
+import { grantHolds } from "./grant-holds.server.ts";
+import { type Trx, underScope } from "./scope.server.ts";
+import type { Coordinator } from "./viewer.ts";
 
 export type NetworkState = {
 	stateFips: string;
