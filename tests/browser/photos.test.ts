@@ -43,8 +43,8 @@ afterAll(async () => {
 	await rm(ownFiles, { recursive: true, force: true });
 });
 
-/** Several photos are drawn and sent one after the other. */
-const patient = { timeout: 20_000 };
+/** Several photos are drawn and sent one after the other; a browser draws when it has nothing else to do. */
+const patient = { timeout: 45_000 };
 
 type File = { name: string; mimeType: string; buffer: Buffer };
 const jpeg = (name: string, buffer: Buffer): File => ({ name, mimeType: "image/jpeg", buffer });
@@ -77,8 +77,8 @@ async function openPhotos(asked: Asked, options: Parameters<typeof openPage>[1] 
 	const page = await openPage(browser, { ...phone, ...options });
 	await followLink(page, `${stack.baseUrl}/r/${token}`);
 	await page.goto(addressesOf(asked).photos);
-	// The script that takes photos comes after the page, and brings the camera's button.
-	if (options.javaScriptEnabled !== false) await page.getByText("Take a photo").waitFor();
+	// The script that takes photos comes after the page, on which the camera's button stands before.
+	if (options.javaScriptEnabled !== false) await page.locator("form[data-scripted]").waitFor();
 	return page;
 }
 

@@ -4,6 +4,7 @@ import { startAskPage } from "./ask-page.ts";
 import { openPageStore } from "./leaving-note.ts";
 import { keepPack } from "./pack.ts";
 import { type BegunPage, type PageData, readPage } from "./page-data.ts";
+import { startPhotoPage } from "./photos/photo-page.ts";
 import { startRefusedPage } from "./refused-page.ts";
 import { startReviewPage } from "./review-page.ts";
 import { isReadyToSendIn, receiptOf, reviewOf } from "./send-in.ts";
@@ -53,8 +54,8 @@ async function startStage(store: PhoneStore, page: BegunPage): Promise<void> {
 	if (page.stage === "ask" && form && stepKey !== undefined) {
 		const ask = await startAskPage(store, { ...page, stepKey }, form);
 		listenForLeaving(ask);
-		if (form.querySelector("input[type=file]"))
-			await import("./photos/photo-page.ts").then(({ startPhotoPage }) => startPhotoPage(ask));
+		// A part of this script: one that came later would never come where the signal goes meanwhile.
+		if (form.querySelector("input[type=file]")) await startPhotoPage(ask);
 		goOnWhereAsked(form);
 	} else if (page.stage === "review" && form) {
 		await startReviewPage(store, page, form);
