@@ -39,7 +39,7 @@ export function Figure(props: FigureProps) {
 				<span
 					className={classes(
 						"text-quiet",
-						headline ? "mt-2 block text-lg" : "ml-2 text-xs whitespace-nowrap print:whitespace-normal",
+						headline ? "mt-2 block text-lg" : "ml-2 text-xs sm:whitespace-nowrap print:whitespace-normal",
 					)}
 				>
 					{bounds}
