@@ -5,7 +5,6 @@ import type { Coordinator } from "./viewer.ts";
 
 export type NetworkState = {
 	stateFips: string;
-	timeZone: string;
 	/** Who serves the state; nobody does where the network is not. */
 	associates: string[];
 	counties: number;
@@ -25,7 +24,7 @@ export async function listNetworkStates(trx: Trx, _viewer: Coordinator): Promise
 		.execute();
 	const states = await trx
 		.selectFrom("directory.state as s")
-		.select(["s.state_fips as stateFips", "s.time_zone as timeZone"])
+		.select("s.state_fips as stateFips")
 		.select(
 			sql<number>`(select count(*)::int from directory.county c where c.state_fips = s.state_fips)`.as("counties"),
 		)

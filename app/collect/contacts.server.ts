@@ -24,8 +24,9 @@ export async function listContacts(trx: Trx, operationId: string) {
 export type Contact = Awaited<ReturnType<typeof listContacts>>[number];
 
 /**
- * Notes a contact with an operation of the viewer's states. What is noted stays, but for the viewer's own newest
- * note (`takeBackNote`): a further one puts it right. About a survey, an outcome that means a disposition sets it, until a release of the survey is drafted.
+ * Notes a contact with an operation of the viewer's states. What is noted stays, but for the viewer's own newest note
+ * (`takeBackNote`): a further one puts it right. About a survey, an outcome that means a disposition sets it, until a release
+ * of the survey is drafted.
  */
 export async function noteContact(
 	trx: Trx,

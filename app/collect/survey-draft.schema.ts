@@ -12,6 +12,9 @@ export const ClosingForm = z.object({
 });
 export type ClosingForm = z.infer<typeof ClosingForm>;
 
+/** On whose clock a draft's closing is set and shown, as its form says beside the box. */
+export const draftZone = "America/Chicago";
+
 /** A survey as the desk's form sends it. Whether states are granted and crops known, the writing function checks. */
 export const SurveyDraft = ClosingForm.extend({
 	/** Of a ready form, or of one that an associate made; whether there is such a form, the writing function checks. */

@@ -43,8 +43,8 @@ afterAll(async () => {
 	await rm(ownFiles, { recursive: true, force: true });
 });
 
-/** Several photos are drawn and sent one after the other; a browser draws when it has nothing else to do. */
-const patient = { timeout: 45_000 };
+/** Several photos are drawn and sent one after the other. */
+const patient = { timeout: 20_000 };
 
 type File = { name: string; mimeType: string; buffer: Buffer };
 const jpeg = (name: string, buffer: Buffer): File => ({ name, mimeType: "image/jpeg", buffer });

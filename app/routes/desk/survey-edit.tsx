@@ -4,7 +4,7 @@ import type { Route } from "./+types/survey-edit";
 import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { wallClockOf } from "#app/collect/survey-closing.ts";
-import { SurveyChange } from "#app/collect/survey-draft.schema.ts";
+import { draftZone, SurveyChange } from "#app/collect/survey-draft.schema.ts";
 import { changeDraft } from "#app/collect/survey-mending.server.ts";
 import { findRealSurvey } from "#app/collect/surveys.server.ts";
 import { Button } from "#app/components/button.tsx";
@@ -20,7 +20,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
 	const survey = await desk.transaction((trx) => findRealSurvey(trx, desk.viewer, params.surveyId));
 	if (!survey) throw refusal("survey_not_found");
-	const { on, at } = wallClockOf(survey.closesAt, survey.timeZone);
+	const { on, at } = wallClockOf(survey.closesAt, draftZone);
 	return {
 		mayChange: survey.state === "draft" && survey.statesNotHeld.length === 0,
 		isDraft: survey.state === "draft",

@@ -2,6 +2,7 @@ import type { TFunction } from "i18next";
 import { useTranslation } from "react-i18next";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { TextField } from "#app/components/text-field.tsx";
+import { draftZone } from "#app/collect/survey-draft.schema.ts";
 import { cropKeys } from "#app/directory/crops.ts";
 import type { FormValues, Problem } from "#app/lib/parse-form.ts";
 
@@ -26,7 +27,7 @@ export function SurveyFields({ stateFips, values, problems }: SurveyFieldsProps)
 	});
 	return (
 		<>
-			<input type="hidden" name="timeZone" value="America/Chicago" />
+			<input type="hidden" name="timeZone" value={draftZone} />
 			<TextField {...text("season")} inputMode="numeric" size="short" maxLength={4} />
 			<TextField {...text("titleEn")} maxLength={120} help={t("surveyNew.titleHelp")} optional />
 			<TextField {...text("titleEs")} maxLength={120} help={t("surveyNew.titleHelp")} optional />
