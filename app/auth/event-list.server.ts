@@ -120,6 +120,7 @@ async function readEvents(trx: Trx, viewer: Coordinator, query: LogQuery, part: 
 				sql<string | null>`coalesce(g.display_name, a.display_name)`.as("about"),
 				"s.season",
 				"s.title",
+				discardedOfEvent.as("discarded"),
 				formOfEvent.as("form"),
 				"e.state_fips",
 				"e.detail",
@@ -140,6 +141,11 @@ const surveyOfEvent = sql<string | null>`case e.subject_kind
 		where b.report_id::text = e.subject_id)
 	else e.detail ->> 'surveyId' end`;
 
+/** What a draft was called that is no more, as the event of its end kept it. */
+const Discarded = z.object({ season: z.number(), title: Words });
+const discardedOfEvent = sql<unknown>`case when e.subject_kind = 'survey' and s.survey_id is null then
+	(select d.detail from log.event d where d.subject_id = e.subject_id and d.action = 'survey.discarded' limit 1) end`;
+
 /** The newest title of the form that an event is about. */
 const formOfEvent = sql<unknown>`case when e.subject_kind = 'form' then coalesce(
 	(select v.definition -> 'title' from collect.form_version v where v.form_id::text = e.subject_id
@@ -155,6 +161,7 @@ type EventRow = {
 	about: string | null;
 	season: number | null;
 	title: unknown;
+	discarded: unknown;
 	form: unknown;
 	state_fips: string | null;
 	detail: unknown;
@@ -167,7 +174,10 @@ function toEvent(row: EventRow): LoggedEvent {
 		person: row.display_name === null ? null : { name: row.display_name, email: row.email },
 		action: row.action,
 		about: row.about,
-		survey: row.season === null ? null : { season: row.season, title: Words.parse(row.title) },
+		survey:
+			row.season === null
+				? (Discarded.safeParse(row.discarded).data ?? null)
+				: { season: row.season, title: Words.parse(row.title) },
 		form: Words.safeParse(row.form).data ?? null,
 		stateFips: row.state_fips,
 		told: Told.parse(row.detail),

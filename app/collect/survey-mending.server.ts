@@ -46,6 +46,7 @@ export async function discardDraft(trx: Trx, viewer: Associate, surveyId: string
 		action: "survey.discarded",
 		subjectKind: "survey",
 		subjectId: surveyId,
+		detail: { season: draft.season, title: draft.title },
 	});
 	return "discarded" as const;
 }

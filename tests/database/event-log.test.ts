@@ -6,6 +6,7 @@ import { logEvent, type NewEvent } from "#app/auth/event-log.server.ts";
 import { LogQuery } from "#app/auth/log-query.ts";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate, Coordinator } from "#app/auth/viewer.ts";
+import { discardDraft } from "#app/collect/survey-mending.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
 import { addPerson, asDesk, connectOwner, count, draftOf, loadPlaces, useDatabase } from "./surveys-fixture.ts";
@@ -75,6 +76,16 @@ test("the log tells who did what to whom, newest first", async () => {
 	]);
 	expect(rows[0]).toMatchObject({ stateFips: "19", told: { role: "associate" } });
 	expect(rows[1]).toMatchObject({ survey: { season: 2031, title: { en: "After harvest" } }, told: { queued: 12 } });
+});
+
+test("it names a draft that was thrown away", async () => {
+	const draft = draftOf(["19"], { titleEn: "Frost", titleEs: "Helada" });
+	const { surveyId } = (await asDesk(iowa, (trx) => createSurvey(trx, iowa, draft))) as { surveyId: string };
+	await asDesk(iowa, (trx) => discardDraft(trx, iowa, surveyId));
+	const [discarded, created] = (await list({ show: "survey" })).rows;
+	expect([discarded?.action, created?.action]).toEqual(["survey.discarded", "survey.created"]);
+	const told = { season: 2031, title: { en: "Frost", es: "Helada" } };
+	expect([discarded?.survey, created?.survey]).toEqual([told, told]);
 });
 
 test("a coordinator learns from it neither which grower answered nor any detail that is not meant to be told", async () => {
