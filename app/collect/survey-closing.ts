@@ -1,3 +1,6 @@
+import type { Problem } from "#app/lib/parse-form.ts";
+import type { ClosingForm } from "./survey-draft.schema.ts";
+
 const day = /^(\d{4})-(\d{2})-(\d{2})$/;
 const clock = /^(\d{1,2}):(\d{2})$/;
 
@@ -36,6 +39,16 @@ export function closingNextSeason(closesAt: Date, timeZone: string, now: Date): 
 		const moment = momentIn(`${year}${on.slice(4)}`, at, timeZone) ?? momentIn(`${year}-02-28`, at, timeZone);
 		if (moment && moment > now) return moment;
 	}
+}
+
+/** Reads the fields of a closing time on a survey's clock, or says what to mend. */
+export function readClosing(form: ClosingForm, timeZone: string, now: Date): { closesAt: Date } | { problem: Problem } {
+	const closesAt = momentIn(form.closesOn, form.closesAt, timeZone);
+	if (!closesAt) return { problem: { field: "closesOn", code: "date_wrong" } };
+	if (closesAt <= now) return { problem: { field: "closesOn", code: "closing_past" } };
+	if (closesAt.getTime() > now.getTime() + 2 * 366 * 86_400_000)
+		return { problem: { field: "closesOn", code: "closing_far" } };
+	return { closesAt };
 }
 
 /** What is added to UTC in a zone at a moment, in milliseconds. */

@@ -4,19 +4,15 @@ const text = (most: number) => z.string({ error: "empty" }).trim().min(1, "empty
 const several = (of: z.ZodType<string>) =>
 	z.preprocess((sent) => (sent === undefined ? [] : sent), z.array(of).min(1, "empty"));
 
-/** A closing day and clock time, as the two fields send them. */
+/** A closing day and clock time, as the two fields send them, on the clock of the survey's states. */
 export const ClosingForm = z.object({
 	closesOn: text(10).regex(/^\d{4}-\d{2}-\d{2}$/, "date_wrong"),
-	closesAt: text(5).regex(/^\d{1,2}:\d{2}$/, "time_wrong"),
-	timeZone: text(60),
+	closesAt: text(5).regex(/^([01]?\d|2[0-3]):[0-5]\d$/, "time_wrong"),
 });
 export type ClosingForm = z.infer<typeof ClosingForm>;
 
-/** On whose clock a draft's closing is set and shown, as its form says beside the box. */
-export const draftZone = "America/Chicago";
-
 /** A survey as the desk's form sends it. Whether states are granted and crops known, the writing function checks. */
-export const SurveyDraft = ClosingForm.extend({
+export const SurveyDraft = z.object({
 	/** Of a ready form, or of one that an associate made; whether there is such a form, the writing function checks. */
 	formKey: z.string({ error: "choice_wrong" }).max(80, "choice_wrong"),
 	season: z.coerce
@@ -29,6 +25,7 @@ export const SurveyDraft = ClosingForm.extend({
 	titleEs: z.string().trim().max(120, "too_long").optional(),
 	crops: several(z.string().max(40, "choice_wrong")),
 	states: several(z.string().max(2, "choice_wrong")),
+	...ClosingForm.shape,
 });
 export type SurveyDraft = z.infer<typeof SurveyDraft>;
 

@@ -6,8 +6,8 @@ import { logEvent } from "#app/auth/event-log.server.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
 import type { Words } from "./form.ts";
 import { findFormToAsk } from "./forms.server.ts";
-import { momentIn } from "./survey-closing.ts";
-import type { ClosingForm, SurveyChange, SurveyDraft } from "./survey-draft.schema.ts";
+import { readClosing } from "./survey-closing.ts";
+import type { SurveyChange, SurveyDraft } from "./survey-draft.schema.ts";
 import { Weighting } from "./weighting.ts";
 
 export type SurveyState = "draft" | "open" | "closed";
@@ -72,8 +72,9 @@ function selectSurveys(trx: Trx, viewer: Associate) {
 			sql<
 				string[]
 			>`array(select g.state_fips from collect.survey_state g where g.survey_id = s.survey_id order by 1)`.as("states"),
-			sql<string>`(select min(d.time_zone) from collect.survey_state g join directory.state d using (state_fips)
-				where g.survey_id = s.survey_id)`.as("time_zone"),
+			sql<string>`collect.clock_of_survey(s.survey_id)`.as("time_zone"),
+			sql<string[]>`array(select g.state_fips from collect.survey_state g join directory.state d using (state_fips)
+				where g.survey_id = s.survey_id and d.time_zone = collect.clock_of_survey(s.survey_id) order by 1)`.as("clock_states"),
 			sql<boolean>`s.opened_at is not null and s.closed_at is null and s.closes_at > now()`.as("is_open"),
 			eb
 				.selectFrom("collect.frame_count as f")
@@ -110,7 +111,10 @@ function toSurvey(row: SurveyRow, viewer: Associate) {
 		statesNotHeld,
 		/** Whether the viewer may close it and move its closing time, which touch every state of the survey. */
 		mayManage: statesNotHeld.length === 0 || row.created_by === viewer.personId,
+		/** On whose clock its times are told and set. */
 		timeZone: row.time_zone,
+		/** Those of its states that have this clock. */
+		clockStates: row.clock_states,
 		closesAt: row.closes_at,
 		openedAt: row.opened_at,
 		closedAt: row.closed_at,
@@ -152,22 +156,11 @@ export async function readDraft(
 	{ formTitle, ...draft }: SurveyChange & { formTitle: Words | undefined },
 	now: Date,
 ) {
-	const problems: Problem[] = [];
-	const crops = await trx
-		.selectFrom("directory.crop")
-		.select("crop_key")
-		.where("crop_key", "in", draft.crops)
-		.execute();
-	if (crops.length !== new Set(draft.crops).size) problems.push({ field: "crops", code: "choice_wrong" });
-	if (draft.states.some((state) => !viewer.stateFips.includes(state)))
-		problems.push({ field: "states", code: "choice_wrong" });
-	const closing = await readClosing(trx, draft, now);
-	if ("problem" in closing) problems.push(closing.problem);
-	// A title in one language alone would stand beside the form's in the other: two names for one survey.
-	if (draft.titleEn && !draft.titleEs) problems.push({ field: "titleEs", code: "empty" });
-	if (draft.titleEs && !draft.titleEn) problems.push({ field: "titleEn", code: "empty" });
+	const problems = await findDraftProblems(trx, viewer, draft, now);
 	if (!formTitle) problems.push({ field: "formKey", code: "choice_wrong" });
-	if (problems.length > 0 || "problem" in closing || !formTitle) return { problems };
+	if (problems.length > 0 || !formTitle) return { problems };
+	const closing = readClosing(draft, await clockOf(trx, draft.states), now);
+	if ("problem" in closing) return { problems: [closing.problem] };
 	const values = {
 		season: draft.season,
 		title: JSON.stringify({ en: draft.titleEn || formTitle.en, es: draft.titleEs || formTitle.es }),
@@ -177,31 +170,57 @@ export async function readDraft(
 	return { values };
 }
 
+/**
+ * What the form alone cannot tell of a draft, in the order of its fields. Of one that came with other faults, of whatever
+ * could be read of it, so that all is told at once.
+ */
+export async function findDraftProblems(
+	trx: Trx,
+	viewer: Associate,
+	draft: Partial<SurveyChange>,
+	now = new Date(),
+): Promise<Problem[]> {
+	const problems: Problem[] = [];
+	// A title in one language alone would stand beside the form's in the other: two names for one survey.
+	if (draft.titleEs && "titleEn" in draft && !draft.titleEn) problems.push({ field: "titleEn", code: "empty" });
+	if (draft.titleEn && "titleEs" in draft && !draft.titleEs) problems.push({ field: "titleEs", code: "empty" });
+	if (draft.crops && !(await areCrops(trx, draft.crops))) problems.push({ field: "crops", code: "choice_wrong" });
+	if (draft.states?.some((state) => !viewer.stateFips.includes(state)))
+		problems.push({ field: "states", code: "choice_wrong" });
+	if (draft.closesOn) {
+		const { closesOn, closesAt = "23:59", states = viewer.stateFips } = draft;
+		const closing = readClosing({ closesOn, closesAt }, await clockOf(trx, states), now);
+		if ("problem" in closing) problems.push(closing.problem);
+	}
+	return problems;
+}
+
+async function areCrops(trx: Trx, keys: string[]): Promise<boolean> {
+	const crops = await trx.selectFrom("directory.crop").select("crop_key").where("crop_key", "in", keys).execute();
+	return crops.length === new Set(keys).size;
+}
+
+/** The clock that a survey of these states goes by; UTC where there are none such, which is a problem of its own. */
+async function clockOf(trx: Trx, states: string[]): Promise<string> {
+	const { rows } = await sql<{ zone: string | null }>`select collect.clock_of_states(${states}) as zone`.execute(trx);
+	return rows[0]?.zone ?? "UTC";
+}
+
+/** Which states have which clock: what a form says beside the box of a time. */
+export async function listStateClocks(trx: Trx, viewer: Associate): Promise<StateClock[]> {
+	return trx
+		.selectFrom("directory.state")
+		.select(["state_fips as stateFips", "time_zone as timeZone"])
+		.where("state_fips", "in", viewer.stateFips)
+		.orderBy("name")
+		.execute();
+}
+export type StateClock = { stateFips: string; timeZone: string };
+
 /** The states of a new survey, or of a draft that has none for the moment. */
 export async function writeStates(trx: Trx, surveyId: string, states: string[]): Promise<void> {
 	await trx
 		.insertInto("collect.survey_state")
 		.values([...new Set(states)].map((state) => ({ survey_id: surveyId, state_fips: state })))
 		.execute();
-}
-
-/** Reads the fields of a closing time in one of the states' zones. */
-export async function readClosing(
-	trx: Trx,
-	form: ClosingForm,
-	now: Date,
-): Promise<{ closesAt: Date } | { problem: Problem }> {
-	const zone = await trx
-		.selectFrom("directory.state")
-		.select("time_zone")
-		.where("time_zone", "=", form.timeZone)
-		.limit(1)
-		.execute();
-	if (zone.length === 0) return { problem: { field: "timeZone", code: "choice_wrong" } };
-	const closesAt = momentIn(form.closesOn, form.closesAt, form.timeZone);
-	if (!closesAt) return { problem: { field: "closesOn", code: "date_wrong" } };
-	if (closesAt <= now) return { problem: { field: "closesOn", code: "closing_past" } };
-	if (closesAt.getTime() > now.getTime() + 2 * 366 * 86_400_000)
-		return { problem: { field: "closesOn", code: "closing_far" } };
-	return { closesAt };
 }

@@ -88,19 +88,15 @@ async function findSampleSurvey(trx: Trx, surveyId: string): Promise<SampleSurve
 	const row = await trx
 		.selectFrom("collect.survey as s")
 		.innerJoin("collect.form_version as v", "v.form_version_id", "s.form_version_id")
-		.innerJoin("collect.survey_state as g", "g.survey_id", "s.survey_id")
-		.innerJoin("directory.state as d", "d.state_fips", "g.state_fips")
 		.where("s.survey_id", "=", surveyId)
 		.select([
 			"s.survey_id as surveyId",
 			"s.title",
 			"s.season",
 			"s.closes_at as closesAt",
-			"d.time_zone as timeZone",
+			sql<string>`collect.clock_of_survey(s.survey_id)`.as("timeZone"),
 			sql<number>`(v.definition ->> 'minutes')::int`.as("minutes"),
 		])
-		.orderBy("d.time_zone")
-		.limit(1)
 		.executeTakeFirst();
 	return row && { ...row, title: row.title as Words };
 }

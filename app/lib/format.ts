@@ -105,6 +105,11 @@ export function formatterFor(language: string, t: TFunction) {
 				timeZone,
 				timeZoneName: "short",
 			}),
+		/** What people call the clock of a zone, summer and winter alike: "Central Time". */
+		clock: (timeZone: string) =>
+			dateFormat(locale, { timeZone, timeZoneName: "longGeneric" })
+				.formatToParts(Date.UTC(2026, 0))
+				.find(({ type }) => type === "timeZoneName")?.value ?? timeZone,
 		/** The calendar day of a moment in the named zone. */
 		dayOf: (value: Date | string, timeZone = "America/Chicago") =>
 			date(value, { day: "numeric", month: "long", year: "numeric", timeZone }),

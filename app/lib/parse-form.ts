@@ -25,6 +25,19 @@ export function parseForm<S extends z.ZodType>(schema: S, form: FormData): Parse
 	return { ok: false, values, problems };
 }
 
+/**
+ * What can be read of a form in which something is to be mended. What else is wrong with it, as only the database knows, is
+ * then told in the same answer.
+ */
+export function parseRest(schema: z.ZodObject, form: FormData, problems: Problem[]): FormValues {
+	const faulty = problems.map(({ field }) => [boxOf(field), true as const]);
+	const rest = parseForm(schema.omit(Object.fromEntries(faulty)), form);
+	return rest.ok ? rest.value : {};
+}
+
+/** The field of the form that a problem's place is in: `crops` of `crops[2]`. */
+export const boxOf = (field: string): string => field.split(/[.[]/, 1)[0]!;
+
 /** The message by which a schema tells a problem with its detail, such as the largest number that is taken. */
 export function problemMessage({ code, detail }: Omit<Problem, "field">): string {
 	return detail ? `${code} ${JSON.stringify(detail)}` : code;

@@ -192,8 +192,7 @@ function selectDrafts(trx: Trx) {
 			"d.status",
 			"s.season",
 			"s.title",
-			sql<string>`(select min(z.time_zone) from collect.survey_state g join directory.state z using (state_fips)
-				where g.survey_id = s.survey_id)`.as("time_zone"),
+			sql<string>`collect.clock_of_survey(s.survey_id)`.as("time_zone"),
 			"d.drafted_by",
 			"p.display_name",
 			"d.drafted_at",

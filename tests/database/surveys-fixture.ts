@@ -112,7 +112,6 @@ export const draftOf = (states: string[], more: Partial<SurveyDraft> = {}): Surv
 	states,
 	closesOn: new Date(Date.now() + 30 * 86_400_000).toISOString().slice(0, 10),
 	closesAt: "17:00",
-	timeZone: "America/Chicago",
 	...more,
 });
 

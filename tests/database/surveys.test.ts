@@ -2,9 +2,10 @@ import { sql } from "kysely";
 import { describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
 import { countLeftOut, listFrameParts } from "#app/collect/frame-parts.server.ts";
+import { wallClockOf } from "#app/collect/survey-closing.ts";
 import { changeDraft, discardDraft } from "#app/collect/survey-mending.server.ts";
 import { closeSurvey, extendSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
-import { createSurvey, findSurvey, listSurveys } from "#app/collect/surveys.server.ts";
+import { createSurvey, findDraftProblems, findSurvey, listSurveys } from "#app/collect/surveys.server.ts";
 import { addOperation, asDesk, count, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
 const { owner, iowa, wisconsin, both } = await openSurveysDatabase();
@@ -15,6 +16,15 @@ async function create(viewer: Associate, states: string[], more = {}): Promise<s
 	return made.surveyId;
 }
 const open = (viewer: Associate, surveyId: string) => asDesk(viewer, (trx) => openSurvey(trx, viewer, surveyId));
+
+const moveTo = (zone: string, states: string[]) =>
+	owner.query("update directory.state set time_zone = $1 where state_fips = any ($2)", [zone, states]);
+/** On whose clock a new survey of these states closes, and what that clock shows then. */
+async function closing(states: string[]) {
+	const surveyId = await create(both, states, { closesAt: "17:00" });
+	const { timeZone, clockStates, closesAt } = (await asDesk(both, (trx) => findSurvey(trx, both, surveyId)))!;
+	return [timeZone, clockStates.join(), wallClockOf(closesAt, timeZone).at];
+}
 
 describe("a draft", () => {
 	test("is refused for a state that is not granted, an unknown crop and a closing time gone by, all at once", async () => {
@@ -27,6 +37,24 @@ describe("a draft", () => {
 				{ field: "closesOn", code: "closing_past" },
 			],
 		});
+	});
+
+	test("tells of whatever could be read of it what is to be mended, where the rest is to be mended too", async () => {
+		const read = { titleEn: "Frost", titleEs: undefined, states: ["55"], closesOn: "2020-01-01" };
+		expect(await asDesk(iowa, (trx) => findDraftProblems(trx, iowa, read))).toEqual([
+			{ field: "titleEs", code: "empty" },
+			{ field: "states", code: "choice_wrong" },
+			{ field: "closesOn", code: "closing_past" },
+		]);
+	});
+
+	test("closes by the clock of most of its states; of two clocks with as many, by the western one", async () => {
+		await moveTo("America/New_York", ["19"]);
+		await moveTo("America/Denver", ["55"]);
+		expect(await closing(["19"])).toEqual(["America/New_York", "19", "17:00"]);
+		expect(await closing(["19", "55"])).toEqual(["America/Denver", "55", "17:00"]);
+		await moveTo("America/Chicago", ["19", "55"]);
+		expect(await closing(["19", "55"])).toEqual(["America/Chicago", "19,55", "17:00"]);
 	});
 
 	test("is seen by associates of one of its states and by no other", async () => {
@@ -54,8 +82,8 @@ describe("mending a draft", () => {
 		expect(await change(iowa, surveyId, wanted)).toBe("states_not_held");
 		expect(await change(both, surveyId, { ...wanted, crops: ["moonfruit"], titleEs: "" })).toEqual({
 			problems: [
-				{ field: "crops", code: "choice_wrong" },
 				{ field: "titleEs", code: "empty" },
+				{ field: "crops", code: "choice_wrong" },
 			],
 		});
 		expect(await change(both, surveyId, wanted)).toBe("changed");

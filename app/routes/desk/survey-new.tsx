@@ -5,7 +5,7 @@ import { requireAssociate } from "#app/auth/guard.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import { listForms } from "#app/collect/editing/form-list.server.ts";
 import { SurveyDraft } from "#app/collect/survey-draft.schema.ts";
-import { createSurvey } from "#app/collect/surveys.server.ts";
+import { createSurvey, listStateClocks } from "#app/collect/surveys.server.ts";
 import { Button } from "#app/components/button.tsx";
 import { ChoiceField } from "#app/components/choice-field.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
@@ -13,21 +13,29 @@ import { Page } from "#app/components/page.tsx";
 import { cropKeys } from "#app/directory/crops.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { type FormValues, parseForm } from "#app/lib/parse-form.ts";
+import { findAllProblems } from "./parts/draft-problems.server.ts";
 import { SurveyFields, surveyFieldLabels } from "./parts/survey-fields.tsx";
 
 export async function loader({ context }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
-	const listed = await desk.transaction((trx) => listForms(trx, desk.viewer));
+	const { listed, clocks } = await desk.transaction(async (trx) => ({
+		listed: await listForms(trx, desk.viewer),
+		clocks: await listStateClocks(trx, desk.viewer),
+	}));
 	const forms = listed
 		.filter(({ isReady, version }) => isReady || version !== null)
 		.map(({ formKey, title }) => ({ key: formKey, title }));
-	return { stateFips: desk.viewer.stateFips, season: new Date().getUTCFullYear(), forms };
+	return { stateFips: desk.viewer.stateFips, clocks, season: new Date().getUTCFullYear(), forms };
 }
 
 export async function action({ context, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
-	const form = parseForm(SurveyDraft, await request.formData());
-	if (!form.ok) return data({ values: form.values, problems: form.problems }, { status: 400 });
+	const sent = await request.formData();
+	const form = parseForm(SurveyDraft, sent);
+	if (!form.ok) {
+		const problems = await findAllProblems(desk, SurveyDraft, sent, form.problems);
+		return data({ values: form.values, problems }, { status: 400 });
+	}
 
 	const made = await desk.transaction((trx) => createSurvey(trx, desk.viewer, form.value));
 	if (made.problems)
@@ -38,7 +46,7 @@ export async function action({ context, request }: Route.ActionArgs) {
 
 export default function SurveyNew({ loaderData, actionData }: Route.ComponentProps) {
 	const { t, i18n } = useTranslation("desk");
-	const { stateFips, season, forms } = loaderData;
+	const { stateFips, clocks, season, forms } = loaderData;
 	const values: FormValues = actionData?.values ?? {
 		formKey: "after_harvest",
 		season,
@@ -58,7 +66,7 @@ export default function SurveyNew({ loaderData, actionData }: Route.ComponentPro
 					defaultValue={String(values.formKey ?? "")}
 					problem={actionData?.problems.find(({ field }) => field === "formKey")}
 				/>
-				<SurveyFields stateFips={stateFips} values={values} problems={actionData?.problems} />
+				<SurveyFields stateFips={stateFips} clocks={clocks} values={values} problems={actionData?.problems} />
 				<div>
 					<Button>{t("surveyNew.save")}</Button>
 				</div>

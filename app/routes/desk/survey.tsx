@@ -9,12 +9,12 @@ import { sessionContext } from "#app/auth/session.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { countLeftOut, listFrameParts } from "#app/collect/frame-parts.server.ts";
 import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
-import { wallClockOf } from "#app/collect/survey-closing.ts";
+import { readClosing, wallClockOf } from "#app/collect/survey-closing.ts";
 import { ClosingForm } from "#app/collect/survey-draft.schema.ts";
 import { archiveSurvey, copySurvey } from "#app/collect/survey-life.server.ts";
 import { discardDraft } from "#app/collect/survey-mending.server.ts";
 import { closeSurvey, extendSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
-import { findSurvey, readClosing } from "#app/collect/surveys.server.ts";
+import { findSurvey } from "#app/collect/surveys.server.ts";
 import { Confirm } from "#app/components/confirm.tsx";
 import { DescriptionList } from "#app/components/description-list.tsx";
 import { ErrorSummary } from "#app/components/error-summary.tsx";
@@ -25,6 +25,7 @@ import { useFormat } from "#app/i18n/use-format.ts";
 import { lookAgain } from "#app/lib/look-again.ts";
 import { type FormValues, parseForm } from "#app/lib/parse-form.ts";
 import { refusal } from "#app/lib/refusal.ts";
+import { closesWords } from "./parts/clock-words.ts";
 import { ClosingPart, closingLabels } from "./parts/closing-part.tsx";
 import { FrameParts } from "./parts/frame-parts.tsx";
 
@@ -102,7 +103,9 @@ async function takeStep(trx: Trx, viewer: Associate, surveyId: string, step: Ste
 		case "remind":
 			return sendReminders(trx, viewer, surveyId, step.wave);
 		case "extend": {
-			const closing = await readClosing(trx, step, new Date());
+			const survey = await findSurvey(trx, viewer, surveyId);
+			if (!survey) return "not_found";
+			const closing = readClosing(step, survey.timeZone, new Date());
 			return "problem" in closing ? closing : extendSurvey(trx, viewer, surveyId, closing.closesAt);
 		}
 	}
@@ -148,7 +151,7 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 			<DescriptionList
 				items={[
 					{ term: t("surveys.state"), detail: t(`common:surveyState.${survey.state}`) },
-					{ term: t("surveys.closes"), detail: format.moment(survey.closesAt, survey.timeZone) },
+					{ term: t("surveys.closes"), detail: closesWords(survey, { t, format }) },
 					{
 						term: t("survey.crops"),
 						detail: format.list(survey.cropKeys.map((crop) => t(`common:crop.${crop}`))),
@@ -210,12 +213,7 @@ export default function SurveyPage({ loaderData, actionData }: Route.ComponentPr
 				</Section>
 			)}
 			{!survey.closedAt && survey.mayManage && (
-				<ClosingPart
-					closing={closing}
-					timeZone={survey.timeZone}
-					values={actionData?.values}
-					problems={actionData?.problems}
-				/>
+				<ClosingPart closing={closing} survey={survey} values={actionData?.values} problems={actionData?.problems} />
 			)}
 		</>
 	);

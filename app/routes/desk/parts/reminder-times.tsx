@@ -8,6 +8,7 @@ import { Section } from "#app/components/section.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { FormValues, Problem } from "#app/lib/parse-form.ts";
+import { clockWords } from "./clock-words.ts";
 
 type Standing = Reminder & { clock: { on: string; at: string } };
 type ReminderTimesProps = { survey: Survey; reminders: Standing[]; values?: FormValues; problems?: Problem[] };
@@ -20,6 +21,7 @@ export function reminderLabels(t: (key: string) => string): Record<string, strin
 /** When the two reminders go; each can be moved or called off until it has gone. */
 export function ReminderTimes({ survey, reminders, values, problems }: ReminderTimesProps) {
 	const { t } = useTranslation("desk");
+	const format = useFormat();
 	const canSet = survey.state === "open" && survey.mayManage;
 	const open = reminderWaves.filter((wave) => !reminders.some((reminder) => reminder.wave === wave && reminder.sentAt));
 	return (
@@ -45,6 +47,7 @@ export function ReminderTimes({ survey, reminders, values, problems }: ReminderT
 							key={wave}
 							wave={wave}
 							standing={reminders.find((reminder) => reminder.wave === wave && !reminder.cancelledAt)}
+							clock={clockWords(survey, { t, format })}
 							values={values}
 							problems={problems}
 						/>
@@ -57,9 +60,12 @@ export function ReminderTimes({ survey, reminders, values, problems }: ReminderT
 	);
 }
 
-type FieldsProps = { wave: 1 | 2; standing?: Standing } & Pick<ReminderTimesProps, "values" | "problems">;
+type FieldsProps = { wave: 1 | 2; standing?: Standing; clock: string } & Pick<
+	ReminderTimesProps,
+	"values" | "problems"
+>;
 
-function Fields({ wave, standing, values, problems }: FieldsProps) {
+function Fields({ wave, standing, clock, values, problems }: FieldsProps) {
 	const { t } = useTranslation("desk");
 	const field = (name: string, stands: string | undefined) => ({
 		name,
@@ -71,7 +77,7 @@ function Fields({ wave, standing, values, problems }: FieldsProps) {
 	return (
 		<div className="flex flex-wrap items-end gap-x-8">
 			<TextField {...field(on, standing?.clock.on)} type="date" size="medium" />
-			<TextField {...field(at, standing?.clock.at)} type="time" size="short" help={t("surveyNew.zone")} />
+			<TextField {...field(at, standing?.clock.at)} type="time" size="short" help={clock} />
 		</div>
 	);
 }
