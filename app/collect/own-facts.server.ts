@@ -1,6 +1,7 @@
 import { underScope, type Trx } from "#app/auth/scope.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
-import { FormDefinition, type Measure, type Words } from "./form.ts";
+import { toldCrops } from "#app/lib/told-crops.ts";
+import { FormDefinition, type Words } from "./form.ts";
 import { isId } from "./surveys.server.ts";
 
 export type OwnFigure = {
@@ -27,16 +28,16 @@ export async function findOwnFacts(trx: Trx, viewer: Grower, surveyId: string) {
 		.where("f.operation_id", "in", viewer.operationIds)
 		.where("o.status", "=", "active")
 		.select(["f.operation_id as operationId", "f.county_fips as countyFips", "o.name"])
-		.select(["s.season", "s.title", "v.definition"])
+		.select(["s.season", "s.title", "s.crop_keys", "v.definition"])
 		.orderBy("o.name")
 		.orderBy("f.operation_id")
 		.execute();
 	const first = rows[0];
 	if (!first) return undefined;
-	const { measures } = FormDefinition.parse(first.definition);
+	const form = FormDefinition.parse(first.definition);
 	const operations: OwnFacts[] = [];
 	for (const { operationId, countyFips, name } of rows) {
-		const figures = await listFigures(trx, surveyId, operationId, measures);
+		const figures = await listFigures(trx, surveyId, operationId, form, first.crop_keys);
 		operations.push({ operationId, countyFips, name, figures });
 	}
 	return {
@@ -49,24 +50,33 @@ export async function findOwnFacts(trx: Trx, viewer: Grower, surveyId: string) {
 
 /**
  * A total says nothing beside that of a whole county, so it is left out; so are quantities that are made for protection alone.
+ * What was asked once stands beside the figure of all crops, as it is published.
  */
-async function listFigures(trx: Trx, surveyId: string, operationId: string, measures: Measure[]) {
+async function listFigures(
+	trx: Trx,
+	surveyId: string,
+	operationId: string,
+	{ measures, screens }: Pick<FormDefinition, "measures" | "screens">,
+	cropKeys: string[],
+) {
 	const facts = await trx
 		.selectFrom("collect.fact")
 		.select(["measure_key", "crop_key", "y", "x"])
 		.where("survey_id", "=", surveyId)
 		.where("operation_id", "=", operationId)
-		.where("crop_key", "!=", "all")
 		.execute();
 	return measures
 		.filter(({ kind, base }) => kind !== "total" && !base)
-		.flatMap(({ key, numerator, scale }) =>
-			facts.flatMap(({ measure_key, crop_key, y, x }): OwnFigure[] =>
-				measure_key !== key || y === null || !x
+		.flatMap((measure) => {
+			const { key, numerator, scale } = measure;
+			const crops = toldCrops(measure, screens, cropKeys);
+			const told = crops.length > 0 ? crops : ["all"];
+			return facts.flatMap(({ measure_key, crop_key, y, x }): OwnFigure[] =>
+				measure_key !== key || !told.includes(crop_key) || y === null || !x
 					? []
 					: [{ measureKey: key, cropKey: crop_key, yesOrNo: "indicator" in numerator, value: (y / x) * scale }],
-			),
-		);
+			);
+		});
 }
 
 /** The crops of which an operation told something that counts in a survey's figures. */

@@ -6,6 +6,7 @@ import { Weighting } from "#app/collect/weighting.ts";
 import { listAreas } from "#app/directory/areas.server.ts";
 import type { WeighedEstimates } from "#app/estimate/calibration/weighed-survey.ts";
 import type { SteadinessCutOffs } from "#app/estimate/steadiness.ts";
+import { toldCrops } from "#app/lib/told-crops.ts";
 import { Words } from "#app/lib/words.ts";
 import { ALL_CROPS } from "#app/protect/codes.ts";
 import { listHoldings } from "#app/protect/holdings.server.ts";
@@ -72,7 +73,10 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 	const tallies = await listTallies(trx, surveyId);
 	const surveyStates = new Set(states.map((state) => state.stateFips));
 	const areas = (await listReleasedAreas(trx, surveyId)) ?? (await listAreasOf(trx, surveyStates));
-	const measures = definition.measures.filter((measure) => !measure.base);
+	const measures = definition.measures
+		.filter((measure) => !measure.base)
+		.map((measure) => ({ ...measure, crops: toldCrops(measure, definition.screens, row.crop_keys) }));
+	const cropsOf = new Map(measures.map(({ key, crops }) => [key, crops]));
 	const frame = await listFrameStrata(trx, surveyId);
 	const weighting = Weighting.parse(row.weighting);
 	const total = (key: "asked" | "answered") => states.reduce((sum, state) => sum + state[key], 0);
@@ -97,7 +101,9 @@ export async function readInputs(trx: Trx, releaseDraftId: string): Promise<Draf
 			weighting,
 			measures,
 			frame,
-			tallies,
+			tallies: tallies.filter(
+				({ measureKey, cropKey }) => cropKey === ALL_CROPS || cropsOf.get(measureKey)?.includes(cropKey),
+			),
 			areasOfCounty: areasOfCounty(areas),
 			districtOf: districtsOf(areas),
 			cutOffs: cutOffsOf(rules),

@@ -19,13 +19,32 @@ export function worstFirst(measure: ReleaseMeasure, cells: CropCell[]): Finding[
 		.toSorted((a, b) => turn * (a.value - b.value) || a.cropKey.localeCompare(b.cropKey));
 }
 
+/** The crop that stands out, or all crops together where a measure is told of them alone. */
+export function leadingCell(measure: ReleaseMeasure, cells: CropCell[]): Finding["cell"] | undefined {
+	const [worst] = worstFirst(measure, cells);
+	if (worst || !isOfAllAlone(cells)) return worst;
+	return cells.find((cell): cell is Finding["cell"] => cell.cropKey === "all" && lookOf(cell) === "number");
+}
+
+/**
+ * Whether one area's cells of a measure are told of all crops together and of none by itself, as what was asked once of an
+ * operation is: then the crops are nothing to set beside each other.
+ */
+export function isOfAllAlone(cells: CropCell[]): boolean {
+	const ofCrops = cells.filter(({ cropKey, status }) => cropKey !== "all" && status === "shown");
+	const all = cells.find(({ cropKey }) => cropKey === "all");
+	const isTold = all !== undefined && lookOf(all) !== "no_figure";
+	return isTold && ofCrops.length > 0 && ofCrops.every((cell) => lookOf(cell) === "no_figure");
+}
+
 export function findingOf(measure: ReleaseMeasure | undefined, cells: CropCell[]): Finding | null {
-	const worst = measure && worstFirst(measure, cells)[0];
-	return worst ? { measure, cell: worst } : null;
+	const leading = measure && leadingCell(measure, cells);
+	return leading ? { measure, cell: leading } : null;
 }
 
 /** The crops in a table's order: all crops together last, what has no number after what has. */
 export function cropRows(measure: ReleaseMeasure, cells: CropCell[]): CropCell[] {
+	if (isOfAllAlone(cells)) return cells.filter(({ cropKey }) => cropKey === "all");
 	const numbered = worstFirst(measure, cells);
 	const named = new Set(numbered.map((cell) => cell.cropKey));
 	const rest = cells.filter((cell) => !named.has(cell.cropKey) && cell.cropKey !== "all");

@@ -51,10 +51,20 @@ export async function listEarlierReleases({ formKey, season }: Release, db = rea
 	return [...bySeason.values()].flatMap((ofSeason) => ofSeason[0] ?? []).toSorted((a, b) => b.season - a.season);
 }
 
+type Addresses = Omit<Reference, "when">[];
+
 /** The same figures in the seasons before, where they had a number; a season without one is left out. */
-export async function findEarlier(
+export async function findEarlier(release: Release, addresses: Addresses, db = reader()) {
+	const seasons = Object.entries(await findSeasons(release, addresses, db));
+	return Object.fromEntries(
+		seasons.map(([key, cells]) => [key, cells.filter(({ cell }) => lookOf(cell) === "number")]),
+	);
+}
+
+/** The same in the seasons before whose releases have such a figure, shown or not, by address; the latest season first. */
+export async function findSeasons(
 	release: Release,
-	addresses: Omit<Reference, "when">[],
+	addresses: Addresses,
 	db = reader(),
 ): Promise<Record<string, SeasonCell[]>> {
 	if (addresses.length === 0) return {};
@@ -66,7 +76,7 @@ export async function findEarlier(
 		addresses.map((address) => {
 			const key = addressKey(address);
 			const cells = seasons.flatMap(({ season, cells: of }) => (of[key] ? [{ season, cell: of[key] }] : []));
-			return [key, cells.filter(({ cell }) => lookOf(cell) === "number")];
+			return [key, cells];
 		}),
 	);
 }

@@ -1,9 +1,9 @@
 import type { Cell, CropCell } from "./cell.ts";
 import { addressKey, findCells, listCells, listCropCells } from "./cells.server.ts";
-import { drawnOrder, partsOfLoss } from "./finding.ts";
+import { drawnOrder, isOfAllAlone, partsOfLoss } from "./finding.ts";
 import type { ReleaseMeasure } from "./release.ts";
 import type { Block } from "./report.ts";
-import { findEarlier, type SeasonCell, type Source, told, type Told } from "./report-source.server.ts";
+import { findSeasons, type SeasonCell, type Source, told, type Told } from "./report-source.server.ts";
 
 type Area = Pick<Cell, "areaKey" | "areaName" | "kind">;
 /** One chart with all of its figures. `worse` says which end is bad news. */
@@ -30,12 +30,12 @@ export async function resolveChart(block: ChartBlock, source: Source): Promise<R
 	if (block.chart === "seasons") return seasonsChart(block, measure, source);
 	const cells = await listCropCells(source.release.releaseId, measure.key, block.area);
 	const area = cells[0] && areaOf(cells[0]);
-	if (!area) return null;
+	if (!area || isOfAllAlone(cells)) return null;
 	if (block.chart === "windows") return windowsChart(block, area, cells, source);
 	const rows = drawnOrder(measure, cells);
 	if (rows.length === 0) return null;
 	if (block.chart === "crops") return { chart: "crops", measure: told(measure), worse: measure.worse, area, rows };
-	return causesChart(block, measure, area, rows, source);
+	return causesChart(block, measure, area, [...rows, ...cells.filter(({ cropKey }) => cropKey === "all")], source);
 }
 
 async function areasChart(block: ChartBlock, measure: ReleaseMeasure, source: Source): Promise<ResolvedChart | null> {
@@ -53,7 +53,7 @@ async function seasonsChart(block: ChartBlock, measure: ReleaseMeasure, source: 
 	const address = { measure: measure.key, crop: block.crop, area: block.area };
 	const [now, earlier] = await Promise.all([
 		findCells(source.release.releaseId, [address]),
-		findEarlier(source.release, [address]),
+		findSeasons(source.release, [address]),
 	]);
 	const key = addressKey(address);
 	const cell = now[key];
@@ -86,7 +86,7 @@ async function windowsChart(
 	return rows.length === 0 ? null : { chart: "windows", measures: days.map(told), area, rows };
 }
 
-/** A loss with the parts of it that have measures of their own. */
+/** A loss with the parts of it that have measures of their own, crop by crop where it was asked so, else of all crops together. */
 async function causesChart(
 	block: ChartBlock,
 	measure: ReleaseMeasure,
@@ -100,11 +100,13 @@ async function causesChart(
 		source.release.releaseId,
 		parts.flatMap(({ key }) => wholes.map(({ cropKey }) => ({ measure: key, crop: cropKey, area: block.area }))),
 	);
-	const rows = wholes.map((whole) => ({
-		cropKey: whole.cropKey,
-		whole,
-		parts: parts.map(({ key }) => found[addressKey({ measure: key, crop: whole.cropKey, area: block.area })] ?? null),
-	}));
+	const partsOf = (cropKey: string) =>
+		parts.map(({ key }) => found[addressKey({ measure: key, crop: cropKey, area: block.area })] ?? null);
+	const isOnce = isOfAllAlone(wholes.flatMap(({ cropKey }) => partsOf(cropKey).flatMap((cell) => cell ?? [])));
+	const rows = wholes
+		.filter(({ cropKey }) => (cropKey === "all") === isOnce)
+		.map((whole) => ({ cropKey: whole.cropKey, whole, parts: partsOf(whole.cropKey) }));
+	if (rows.length === 0) return null;
 	return { chart: "causes", measure: told(measure), parts: parts.map(told), area, rows };
 }
 

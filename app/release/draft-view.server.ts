@@ -61,7 +61,9 @@ export async function viewDraft(trx: Trx, draft: Draft, choice: DraftChoice): Pr
 	const { all, states, joins, setAside, closedAt, weighting, calibrations } = method;
 	return {
 		draft: { ...draft, method: { all, states, joins, setAside, closedAt, weighting, calibrations } },
-		measures: method.measures.filter((measure) => choice.crop !== "all" || measure.acrossCrops),
+		measures: method.measures.filter(({ acrossCrops, crops }) =>
+			choice.crop === "all" ? acrossCrops : (crops?.includes(choice.crop) ?? true),
+		),
 		cropKeys: method.cropKeys,
 		counts: countStatuses(cells, new Map(method.areas.map((area) => [area.areaKey, area.kind]))),
 		rows,

@@ -30,6 +30,8 @@ const ReleaseMeasure = z.object({
 	worse: z.enum(["more", "less"]).nullable(),
 	hue: z.string(),
 	acrossCrops: z.boolean(),
+	/** The crops that it is told of; drafts made before this was kept do not say. */
+	crops: z.array(z.string()).optional(),
 	/** Shown value = estimate x scale. */
 	scale: z.number(),
 });

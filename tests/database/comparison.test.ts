@@ -88,21 +88,24 @@ test("own figures are told in the measure's unit, and the release once there is 
 
 test("a share of a crop is told as a figure, and only what was so or not so as yes or no", async () => {
 	const { place, grower } = await answered();
-	for (const [measure, y, x] of [
-		["freeze_loss", 20, 100],
-		["total_loss", 1, 1],
+	for (const [measure, crop, y, x] of [
+		["freeze_loss", "apple", 30, 100],
+		["freeze_loss", "all", 20, 100],
+		["total_loss", "apple", 1, 1],
+		["total_loss", "all", 0, 1],
 	])
 		await owner.query(
-			`insert into collect.fact select survey_id, $3, 'apple', operation_id, owner_id, county_fips, state_fips, stratum_key, $4, $5
+			`insert into collect.fact select survey_id, $3, $6, operation_id, owner_id, county_fips, state_fips, stratum_key, $4, $5
 			from collect.frame_operation where survey_id = $1 and operation_id = $2`,
-			[place.surveyId, place.operationId, measure, y, x],
+			[place.surveyId, place.operationId, measure, y, x, crop],
 		);
 	const own = await asGrower(grower, (trx) => findOwnFacts(trx, grower, place.surveyId));
-	const told = own?.operations[0]?.figures.map(({ measureKey, yesOrNo, value }) => [measureKey, yesOrNo, value]);
+	const told = own?.operations[0]?.figures.map((one) => [one.measureKey, one.cropKey, one.yesOrNo, one.value]);
+	// What took the fruit was asked once, so that it stands beside the figure of all crops.
 	expect(told).toEqual([
-		["crop_loss", false, 25],
-		["freeze_loss", false, 20],
-		["total_loss", true, 100],
+		["crop_loss", "apple", false, 25],
+		["freeze_loss", "all", false, 20],
+		["total_loss", "apple", true, 100],
 	]);
 });
 

@@ -7,6 +7,7 @@ import { closeSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey, findSurvey } from "#app/collect/surveys.server.ts";
 import { computeReleaseDraft } from "#app/jobs/compute-release-draft.server.ts";
 import { networkRules } from "#app/jobs/network-rules.ts";
+import { toldCrops } from "#app/lib/told-crops.ts";
 import { createDraft, findLatestDraft, listDraftCells } from "#app/release/drafts.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
 import {
@@ -131,8 +132,13 @@ describe.each(readyFormKeys)("a survey of the form %s", (formKey) => {
 		const cells = await asDesk(associate, (trx) => listDraftCells(trx, made.releaseDraftId));
 		const network = cells.find((cell) => cell.areaKey === "network" && cell.cropKey === "apple");
 		expect(network).toMatchObject({ status: "shown", respondents: 7 });
-		const told = ofApple.filter(({ base }) => !base).map(({ key }) => key);
-		expect(network?.figures?.map(({ measureKey }) => measureKey).toSorted()).toEqual(told.toSorted());
+		const published = form.measures.filter(({ base }) => !base);
+		const keysOf = (measures: typeof published) => measures.map(({ key }) => key).toSorted();
+		const told = published.filter((one) => toldCrops(one, form.screens, ["apple", "plum"]).includes("apple"));
+		expect(network?.figures?.map(({ measureKey }) => measureKey).toSorted()).toEqual(keysOf(told));
+		const all = cells.find((cell) => cell.areaKey === "network" && cell.cropKey === "all");
+		const across = published.filter(({ acrossCrops }) => acrossCrops);
+		expect(all?.figures?.map(({ measureKey }) => measureKey).toSorted()).toEqual(keysOf(across));
 	});
 });
 

@@ -6,16 +6,16 @@ const harvestDays = [
 		key: "first_harvest",
 		label: { en: "First day of harvest", es: "Primer día de cosecha" },
 		description: {
-			en: "The day by which half of the operations with the crop had begun to pick, whichever of their crops came first.",
-			es: "El día en que la mitad de las fincas con el cultivo ya había empezado a cosechar, sin importar cuál de sus cultivos maduró primero.",
+			en: "The day by which half of the operations had begun to pick, whichever of their crops came first.",
+			es: "El día en que la mitad de las fincas ya había empezado a cosechar, sin importar cuál de sus cultivos maduró primero.",
 		},
 	},
 	{
 		key: "last_harvest",
 		label: { en: "Last day of harvest", es: "Último día de cosecha" },
 		description: {
-			en: "The day by which half of the operations with the crop had finished picking all of their crops.",
-			es: "El día en que la mitad de las fincas con el cultivo ya había terminado de cosechar todos sus cultivos.",
+			en: "The day by which half of the operations had finished picking all of their crops.",
+			es: "El día en que la mitad de las fincas ya había terminado de cosechar todos sus cultivos.",
 		},
 	},
 ] as const;
@@ -52,8 +52,8 @@ export const afterHarvestMeasures: Measure[] = [
 		kind: "proportion",
 		label: { en: "Loss to freeze or frost", es: "Pérdida por helada" },
 		description: {
-			en: "Pounds lost to freeze or frost as a share of a normal crop.",
-			es: "Libras perdidas por helada o congelación, como parte de una cosecha normal.",
+			en: "Pounds lost to freeze or frost as a share of a normal crop. What took the fruit is asked once for all crops of an operation, so it is told of all crops together.",
+			es: "Libras perdidas por helada, como parte de una cosecha normal. La causa se pregunta una vez para todos los cultivos de la finca, y por eso se da para todos juntos.",
 		},
 		unit: "percent",
 		decimals: 0,

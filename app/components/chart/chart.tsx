@@ -6,6 +6,7 @@ import { CauseBars } from "./cause-bars.tsx";
 import { paleFill, partFill } from "./chart-fills.ts";
 import { ChartTable } from "./chart-table.tsx";
 import { DayStrips } from "./day-strips.tsx";
+import { SeasonsUnshown } from "./seasons-unshown.tsx";
 import { SeasonLine } from "./season-line.tsx";
 import { useFinding } from "./use-finding.ts";
 import { AreaDots, CropBars } from "./value-rows.tsx";
@@ -38,6 +39,7 @@ export function Chart({ drawn, season, alone, beside }: ChartProps) {
 				<p className="mb-3 mt-2 max-w-prose text-sm text-quiet">
 					{t(`chart.read.${drawn.chart}`)} {isCareful(drawn) && t("chart.care")}
 				</p>
+				{drawn.chart === "seasons" && <SeasonsUnshown rows={drawn.rows} />}
 			</figure>
 			{!alone && <ChartTable drawn={drawn} caption={subject} />}
 		</div>
@@ -73,6 +75,10 @@ function useSubject(drawn: ResolvedChart, season: number): string {
 				areas: t(`common:areaKind.plural.${drawn.kind}`),
 				season,
 			});
+		case "causes":
+			if (drawn.rows.some(({ cropKey }) => cropKey !== "all"))
+				return t("chart.subject.crops", { measure, area: areaName(drawn.area), season });
+			return t("chart.subject.whole", { measure, crop: t("common:crop.all"), area: areaName(drawn.area), season });
 		case "seasons":
 			return t("chart.subject.seasons", {
 				measure,

@@ -3,7 +3,7 @@ import { classes } from "#app/components/classes.ts";
 import { rangeOf } from "#app/lib/likely-range.ts";
 import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import { markFill } from "./chart-fills.ts";
-import { ends, useTickText } from "./chart-look.ts";
+import { ends, lookOf, useTickText } from "./chart-look.ts";
 import { chartWidth } from "./row-chart.tsx";
 import { placeOn, scaleOf } from "./scale.ts";
 
@@ -15,7 +15,7 @@ const [top, bottom, left, right] = [28, 150, 72, chartWidth - 40];
 export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLineProps) {
 	const format = useFormat();
 	const tickText = useTickText();
-	const told = rows.filter(({ cell }) => cell.value !== null && cell.steadiness !== "rough");
+	const told = rows.filter(({ cell }) => lookOf(cell) === "number");
 	const days = measure.unit === "day";
 	const held = told.flatMap(({ cell }) => ends(cell));
 	const scale = scaleOf(held.concat(days ? [] : [0]), { zero: !days, days, wanted: 3 });
@@ -59,12 +59,14 @@ export function SeasonLine({ drawn: { measure, rows }, alternative }: SeasonLine
 								? format.figure(cell.value ?? 0, { ...measure, season })
 								: format.number(cell.value ?? 0, measure.decimals)}
 						</text>
-						<text x={x(season)} y={bottom + 18} textAnchor="middle" className="chart-quiet">
-							{season}
-						</text>
 					</g>
 				);
 			})}
+			{rows.map(({ season }) => (
+				<text key={season} x={x(season)} y={bottom + 18} textAnchor="middle" className="chart-quiet">
+					{season}
+				</text>
+			))}
 		</svg>
 	);
 }

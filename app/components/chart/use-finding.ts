@@ -3,7 +3,7 @@ import { useAreaName } from "#app/components/map/area-name.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
-import { numbered, type Shown } from "./chart-look.ts";
+import { lookOf, numbered, type Shown } from "./chart-look.ts";
 import { isApart } from "#app/lib/likely-range.ts";
 
 /** What a chart shows first, as a sentence. Figures whose likely ranges overlap are never told as if they differed for sure. */
@@ -33,7 +33,7 @@ export function useFinding() {
 				const part = drawn.parts[0];
 				const cell = row?.parts[0];
 				if (!row || !part || !cell || numbered([cell, row.whole]).length < 2) return t("chart.finding.none");
-				return t("chart.finding.causes", {
+				return t([`chart.finding.causes_${row.cropKey}`, "chart.finding.causes"], {
 					crop: cropName(row.cropKey),
 					cause: wordsIn(part.label, i18n.language),
 					part: format.figure(cell.value ?? 0, part),
@@ -79,15 +79,17 @@ function useSeasonFinding() {
 	const format = useFormat();
 	const cropName = useCropSaid();
 	return ({ measure, cropKey, rows }: Extract<ResolvedChart, { chart: "seasons" }>): string => {
-		const now = rows.at(-1);
-		if (!now || numbered([now.cell]).length === 0) return t("chart.finding.none");
+		const latest = rows.at(-1);
+		const told = rows.filter(({ cell }) => lookOf(cell) === "number");
+		const [last, now] = [told.at(-2), told.at(-1)];
+		if (!latest || !now) return t("chart.finding.none");
 		const said = {
 			measure: wordsIn(measure.label, i18n.language),
 			crop: cropName(cropKey),
-			value: format.figure(now.cell.value ?? 0, measure),
+			value: format.figure(now.cell.value ?? 0, { ...measure, season: now.season }),
 			season: now.season,
 		};
-		const last = rows.at(-2);
+		if (now !== latest) return t("chart.finding.season_none", { ...said, latest: latest.season });
 		if (!last) return t("chart.finding.season_alone", said);
 		const before = {
 			lastValue: format.figure(last.cell.value ?? 0, { ...measure, season: last.season }),

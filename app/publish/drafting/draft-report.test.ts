@@ -36,6 +36,7 @@ const say: Say = (key, values = {}) => `${key} ${Object.values(values).join(" ")
 const input = {
 	release: { season: 2025, title: label },
 	measures: [measure("crop_loss"), share("freeze_loss"), share("total_loss")],
+	cropsOf: { crop_loss: ["all", "apple", "plum"], freeze_loss: ["all"], total_loss: ["all", "apple", "plum"] },
 	measure: measure("crop_loss"),
 	earlier: {},
 	pests: [],
@@ -77,10 +78,35 @@ const day = (key: string): ReleaseMeasure => ({ ...measure(key), kind: "day", un
 test("a release led by days tells the earliest crop in sentences of days, and other days as figures", () => {
 	const days = [day("first_bloom"), day("petal_fall")];
 	const crops = [cell("apple", "network", 125), cell("plum", "network", 118)];
-	const made = draftReport({ ...input, measures: days, measure: days[0]!, crops, districts: [] });
+	const cropsOf = { first_bloom: ["apple", "plum"], petal_fall: ["apple", "plum"] };
+	const made = draftReport({ ...input, measures: days, cropsOf, measure: days[0]!, crops, districts: [] });
 	expect(made.summary.en).toBe("lead 2025 plum [[first_bloom|plum|network]] day");
 	expect(JSON.stringify(made.blocks)).toContain("where day");
 	expect(made.blocks).toContainEqual(expect.objectContaining({ type: "chart", chart: "windows" }));
+});
+
+test("what was asked once of an operation is told of all crops, and no chart sets crops beside each other by it", () => {
+	const days = [day("first_harvest"), day("last_harvest")];
+	const told = { ...input, measures: [...input.measures, ...days], districts: [] };
+	const cropsOf = { ...input.cropsOf, first_harvest: ["all"], last_harvest: ["all"] };
+	const made = draftReport({ ...told, cropsOf, crops: [cell("all", "network", 90), cell("plum", "network", 62)] });
+	expect(made.blocks).not.toContainEqual(expect.objectContaining({ chart: "windows" }));
+	const figures = made.blocks.flatMap((block) => (block.type === "figure" ? [`${block.measure} ${block.crop}`] : []));
+	expect(figures).toEqual(["total_loss plum", "first_harvest all", "last_harvest all"]);
+});
+
+test("a release led by what was asked once leads with all crops together", () => {
+	const once = { ...share("poor_bee_weather"), label: { en: "Poor weather for bees", es: "Mal tiempo" } };
+	const unasked = { ...cell("plum", "network", null), status: "shown" as const };
+	const crops = [cell("all", "network", 31), unasked];
+	const districts = [cell("all", "IA-1", 73), cell("all", "WI-1", 21)];
+	const earlier = { all: [{ season: 2024, cell: cell("all", "network", 60) }] };
+	const cropsOf = { poor_bee_weather: ["all"] };
+	const made = draftReport({ ...input, measures: [once], cropsOf, measure: once, crops, districts, earlier });
+	expect(made.summary.en).toMatch(/^Poor weather for bees, leadAll 2025 all \[\[poor_bee_weather\|all\|network\]\]/);
+	const charts = made.blocks.flatMap((block) => (block.type === "chart" ? [`${block.chart} ${block.crop}`] : []));
+	expect(charts).toEqual(["seasons all", "areas all"]);
+	expect(JSON.stringify(made)).toContain("[[poor_bee_weather|all|IA-1]]");
 });
 
 test("the widest changes come first, each with the season before and the mean of seasons where there are several", () => {

@@ -1,7 +1,7 @@
 import { isApart } from "#app/lib/likely-range.ts";
 import { type Cell, type CropCell, lookOf } from "../cell.ts";
 import { neededCautions } from "../cautions.ts";
-import { partsOfLoss, worstFirst } from "../finding.ts";
+import { isOfAllAlone, leadingCell, partsOfLoss, worstFirst } from "../finding.ts";
 import type { Release, ReleaseMeasure } from "../release.ts";
 import { type Block, cellCounts, type DraftWords, referenceText, type ReportContent } from "../report.ts";
 import type { SeasonCell } from "../report-source.server.ts";
@@ -11,6 +11,8 @@ export type Say = (key: string, values?: Record<string, string | number>) => str
 export type DraftInput = {
 	release: Pick<Release, "season" | "title">;
 	measures: ReleaseMeasure[];
+	/** The crops that each measure has figures of, by its key; "all" alone where it was asked once of an operation. */
+	cropsOf: Record<string, string[]>;
 	/** The measure that leads the report. */
 	measure: ReleaseMeasure;
 	/** That measure in the whole network, crop by crop. */
@@ -30,7 +32,8 @@ export type DraftInput = {
  */
 export function draftReport(input: DraftInput): ReportContent {
 	const { release, measure, crops } = input;
-	const [worst, second] = worstFirst(measure, crops);
+	const worst = leadingCell(measure, crops);
+	const [, second] = worstFirst(measure, crops);
 	const sentence = both(input.say);
 	const about = { season: release.season };
 	// What the likely ranges do not bear is never said.
@@ -45,11 +48,11 @@ export function draftReport(input: DraftInput): ReportContent {
 			secondFigure: referenceText({ measure: measure.key, crop: close.cropKey, area: close.areaKey }),
 		}),
 	};
-	const leading = lead ? sentence(close ? "leadClose" : "lead", lead) : sentence("noLead", about);
+	const leading = lead ? leadOf(input, lead, Boolean(close), sentence) : sentence("noLead", about);
 	const blocks: Unnamed[] = [
 		{ type: "heading", text: sentence("happened") },
 		{ type: "text", text: leading },
-		...(worst ? [chart("crops", measure, worst.cropKey)] : []),
+		...(worst && !isOfAllAlone(crops) ? [chart("crops", measure, worst.cropKey)] : []),
 		...changePart(input, sentence),
 		...(worst ? wherePart(input, worst.cropKey, sentence) : []),
 		...(worst ? otherParts(input, worst.cropKey, sentence) : []),
@@ -65,6 +68,17 @@ export function draftReport(input: DraftInput): ReportContent {
 	};
 }
 
+/** Which crop stands out; where crops are nothing to set beside each other, the figure of all of them under the measure's name. */
+function leadOf(
+	{ measure, crops }: DraftInput,
+	lead: Record<string, string | number>,
+	isClose: boolean,
+	sentence: Sentence,
+): DraftWords {
+	if (isOfAllAlone(crops)) return named(sentence("leadAll", lead), measure.label);
+	return sentence(isClose ? "leadClose" : "lead", lead);
+}
+
 const counted = (status: string) => referenceText({ measure: cellCounts, crop: status, area: "county" });
 
 function chart(kind: Extract<Block, { type: "chart" }>["chart"], measure: ReleaseMeasure, crop: string): Unnamed {
@@ -76,15 +90,17 @@ const mostChanges = 3;
 
 /** The crops whose figure moved furthest since the season before, beside the mean of earlier seasons where there is one. */
 function changePart({ measure, crops, earlier, release }: DraftInput, sentence: Sentence): Unnamed[] {
-	const changes = worstFirst(measure, crops).flatMap((cell) => {
+	const leading = leadingCell(measure, crops);
+	const told = isOfAllAlone(crops) && leading ? [leading] : worstFirst(measure, crops);
+	const changes = told.flatMap((cell) => {
 		const seasons = earlier[cell.cropKey] ?? [];
 		const last = seasons.find(({ season }) => season === release.season - 1)?.cell.value;
 		return typeof last === "number" ? [{ crop: cell.cropKey, by: Math.abs(cell.value - last), seasons }] : [];
 	});
-	const widest = changes.toSorted((a, b) => b.by - a.by)[0];
+	const furthest = changes.toSorted((a, b) => b.by - a.by).slice(0, mostChanges);
+	const [widest] = furthest;
 	if (!widest) return [];
-	const told = changes.toSorted((a, b) => b.by - a.by).slice(0, mostChanges);
-	const lines = told.map(({ crop, seasons }) => {
+	const lines = furthest.map(({ crop, seasons }) => {
 		const at = { measure: measure.key, crop, area: "network" };
 		return sentence(seasons.length > 1 ? "changeMean" : "change", {
 			named: crop,
@@ -101,9 +117,10 @@ function changePart({ measure, crops, earlier, release }: DraftInput, sentence: 
 }
 
 /** Days as strips, the causes of a loss, and the pests that were seen most. */
-function otherParts({ measures, measure, pests }: DraftInput, crop: string, sentence: Sentence): Unnamed[] {
-	const days = measures.filter(({ kind }) => kind === "day");
-	const strips: Unnamed[] = days[0] && days.length > 1 ? [chart("windows", days[0], crop)] : [];
+function otherParts(input: DraftInput, crop: string, sentence: Sentence): Unnamed[] {
+	const { measures, measure, pests } = input;
+	const [day] = stripsOf(input);
+	const strips: Unnamed[] = day ? [chart("windows", day, crop)] : [];
 	const causes: Unnamed[] =
 		partsOfLoss(measure, measures).length > 0
 			? [{ type: "heading", text: sentence("causes") }, chart("causes", measure, crop)]
@@ -128,6 +145,12 @@ function otherParts({ measures, measure, pests }: DraftInput, crop: string, sent
 }
 const mostPests = 5;
 
+/** The days that are drawn as strips, crop by crop: two or more, if they were asked so. */
+function stripsOf({ measures, cropsOf }: DraftInput): ReleaseMeasure[] {
+	const days = measures.filter(({ kind, key }) => kind === "day" && cropsOf[key]?.some((crop) => crop !== "all"));
+	return days.length > 1 ? days : [];
+}
+
 /** A measure's own words, which stand in the release in both languages, put before a sentence. */
 const named = (words: DraftWords, label: DraftWords): DraftWords => ({
 	en: `${label.en}, ${words.en}`,
@@ -141,10 +164,12 @@ const listed = (lines: DraftWords[]): DraftWords => ({
 type Unnamed = Block extends infer B ? (B extends Block ? Omit<B, "id"> : never) : never;
 
 /** A map of the worst crop, its widest differences between districts, and the other measures of the same crop. */
-function wherePart({ measures, measure, districts }: DraftInput, crop: string, sentence: Sentence): Unnamed[] {
+function wherePart(input: DraftInput, crop: string, sentence: Sentence): Unnamed[] {
+	const { measures, measure, districts, cropsOf } = input;
+	// Ordered as crops are; here there is one, which may be all of them.
 	const shown = worstFirst(
 		measure,
-		districts.map((cell) => ({ ...cell, cropKey: crop })),
+		districts.map((cell) => ({ ...cell, cropKey: "" })),
 	);
 	const [most, least] = [shown[0], shown.at(-1)];
 	const at = (cell: Cell) => referenceText({ measure: measure.key, crop, area: cell.areaKey });
@@ -164,9 +189,8 @@ function wherePart({ measures, measure, districts }: DraftInput, crop: string, s
 				]
 			: [];
 	const rest = measures.filter(({ key }) => key !== measure.key);
-	// Two days or more are drawn as strips.
-	const days =
-		measures.filter(({ kind }) => kind === "day").length > 1 ? [] : rest.filter(({ kind }) => kind === "day");
+	const drawn = stripsOf(input);
+	const days = rest.filter((other) => other.kind === "day" && !drawn.includes(other));
 	const parts = partsOfLoss(measure, measures);
 	const others = rest
 		.filter((other) => other.kind !== "day" && other.worse === measure.worse && other.hue !== "pests")
@@ -177,7 +201,10 @@ function wherePart({ measures, measure, districts }: DraftInput, crop: string, s
 		{ type: "map", measure: measure.key, crop },
 		...widest,
 		chart("areas", measure, crop),
-		...[...others, ...days].map((other) => ({ type: "figure" as const, measure: other.key, crop, area: "network" })),
+		...[...others, ...days].flatMap(({ key }) => {
+			const told = [crop, "all"].find((one) => cropsOf[key]?.includes(one));
+			return told ? [{ type: "figure" as const, measure: key, crop: told, area: "network" }] : [];
+		}),
 	];
 }
 

@@ -2,9 +2,9 @@ import type { Kysely } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
 import { listCells, listCropCells } from "../cells.server.ts";
-import { leadingMeasure, worstFirst } from "../finding.ts";
+import { leadingCell, leadingMeasure } from "../finding.ts";
 import type { ReaderDB } from "../reader.server.ts";
-import { findReleaseById, listMeasures } from "../releases.server.ts";
+import { findReleaseById, listCrops, listMeasures } from "../releases.server.ts";
 import { slugOf } from "../report.ts";
 import type { ReleaseMeasure } from "../release.ts";
 import { findEarlier } from "../report-source.server.ts";
@@ -32,7 +32,7 @@ export async function startReport(
 	if (!release || !measure) return undefined;
 
 	const crops = await listCropCells(releaseId, measure.key, "network", released);
-	const worst = worstFirst(measure, crops)[0];
+	const worst = leadingCell(measure, crops);
 	const districts = worst ? await listCells(releaseId, measure.key, worst.cropKey, "district", released) : [];
 	const earlier = await findEarlier(
 		release,
@@ -42,6 +42,9 @@ export async function startReport(
 	const content = draftReport({
 		release,
 		measures,
+		cropsOf: Object.fromEntries(
+			await Promise.all(measures.map(async ({ key }) => [key, await listCrops(releaseId, key, released)] as const)),
+		),
 		measure,
 		crops,
 		districts,

@@ -4,6 +4,7 @@ import { BesideChart } from "#app/components/chart/beside-chart.tsx";
 import { Figure } from "#app/components/figure.tsx";
 import { Section } from "#app/components/section.tsx";
 import { useAreaName } from "#app/components/map/area-name.ts";
+import { compareCrops } from "#app/directory/crops.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 import type { Comparison } from "#app/publish/comparison.server.ts";
@@ -17,7 +18,7 @@ type Cell = Comparison["cells"][string];
 export function OperationBeside({ operation }: { operation: Beside }) {
 	const { t, i18n } = useTranslation("orchard");
 	const { name, figures, measures, cells } = operation;
-	const crops = [...new Set(figures.map(({ cropKey }) => cropKey))];
+	const crops = [...new Set(figures.map(({ cropKey }) => cropKey))].toSorted(compareCrops);
 	return (
 		<Section title={name}>
 			{crops.map((crop) => (

@@ -7,12 +7,14 @@ import { classes } from "#app/components/classes.ts";
 import { EmptyState } from "#app/components/empty-state.tsx";
 import { Notice } from "#app/components/notice.tsx";
 import { Section } from "#app/components/section.tsx";
+import { useFormat } from "#app/i18n/use-format.ts";
 import { countCells } from "#app/publish/tables/catalogue.ts";
 import { tableLimits } from "#app/publish/tables/limits.ts";
 import type { TableChart } from "#app/publish/tables/views.ts";
 import { TableDownloads } from "./table-downloads.tsx";
 import { TableGrid } from "./table-grid.tsx";
 import { TableMapView } from "./table-map.tsx";
+import { useTableNames } from "./table-names.ts";
 import { TableNotes } from "./table-notes.tsx";
 import type { TablePage } from "./table-page.ts";
 
@@ -51,7 +53,7 @@ function Told(props: ResultProps & { table: NonNullable<TablePage["table"]> }) {
 					{t(`tables.noChart.${table.charts}`, { max: tableLimits.drawn })}
 				</p>
 			) : (
-				<Charts charts={table.charts} />
+				<Charts {...props} charts={table.charts} />
 			)}
 			{table.map && picture && <TableMapView map={table.map} picture={picture} catalogue={catalogue} />}
 			<TableGrid {...props} />
@@ -61,17 +63,33 @@ function Told(props: ResultProps & { table: NonNullable<TablePage["table"]> }) {
 }
 
 /** Charts of one table beside each other, on one scale where they are of one unit. */
-function Charts({ charts }: { charts: TableChart[] }) {
+function Charts({ charts, catalogue, selection }: ResultProps & { charts: TableChart[] }) {
+	const { t } = useTranslation("dataroom");
+	const format = useFormat();
+	const { nameOf } = useTableNames(catalogue);
+	const seasons = new Set(
+		charts.flatMap((one) => (one.drawn.chart === "seasons" ? one.drawn.rows.map((row) => row.season) : [one.season])),
+	);
+	const undrawn = catalogue.releases.filter(
+		({ number, season }) => selection.release.includes(number) && !seasons.has(season),
+	);
 	const besides = (unit: string) =>
 		charts.flatMap(({ drawn }) =>
 			drawn.chart === "seasons" || drawn.measure.unit !== unit ? [] : numbered(drawn.rows).flatMap(ends),
 		);
 	return (
-		<div className={classes(charts.length > 1 && "grid gap-x-10 lg:grid-cols-2")}>
-			{charts.map(({ key, ...chart }) => (
-				<Chart key={key} {...chart} beside={besides(chart.drawn.measure.unit)} alone />
-			))}
-		</div>
+		<>
+			<div className={classes(charts.length > 1 && "grid gap-x-10 lg:grid-cols-2")}>
+				{charts.map(({ key, ...chart }) => (
+					<Chart key={key} {...chart} beside={besides(chart.drawn.measure.unit)} alone />
+				))}
+			</div>
+			{undrawn.length > 0 && (
+				<p className="mb-4 max-w-prose text-sm">
+					{t("tables.undrawn", { releases: format.list(undrawn.map(({ number }) => nameOf("season", `${number}`))) })}
+				</p>
+			)}
+		</>
 	);
 }
 

@@ -1,6 +1,5 @@
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import type { Measure } from "#app/collect/form.ts";
 import { findSurveyForm } from "#app/collect/forms.server.ts";
 import { findSurvey } from "#app/collect/surveys.server.ts";
 import { type Area, listAreas, regionKey } from "#app/directory/areas.server.ts";
@@ -8,6 +7,7 @@ import type { AreasOfCounty } from "#app/estimate/survey.ts";
 import { estimateByWeights } from "#app/jobs/weighed-estimates.server.ts";
 import { groupBy } from "#app/lib/group-by.ts";
 import { pageOf } from "#app/lib/page-of.ts";
+import { toldCrops } from "#app/lib/told-crops.ts";
 import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
 import { barScales, chooseRows, sortRows } from "./estimate-rows.ts";
 import { type EstimatesQuery, figureSorts } from "./estimates.schema.ts";
@@ -30,7 +30,9 @@ export async function readDraftInputs(trx: Trx, viewer: Associate, surveyId: str
 		weighting: survey.weighting,
 		definition,
 		held,
-		measures: definition.measures.filter((measure) => !measure.base),
+		measures: definition.measures
+			.filter((measure) => !measure.base)
+			.map((measure) => ({ ...measure, crops: toldCrops(measure, definition.screens, survey.cropKeys) })),
 		areas: held.length > 1 ? [region, ...inTreeOrder(branches)] : inTreeOrder(branches),
 		areasOfCounty: pathsOfCounties(branches),
 		districtOf: districtsOfCounties(branches),
@@ -41,9 +43,9 @@ export async function readDraftInputs(trx: Trx, viewer: Associate, surveyId: str
 export type DraftInputs = NonNullable<Awaited<ReturnType<typeof readDraftInputs>>>;
 
 /** The measures that are told of a crop. */
-export function measuresOf(inputs: Pick<DraftInputs, "measures">, cropKey: string): Measure[] {
+export function measuresOf(inputs: Pick<DraftInputs, "measures">, cropKey: string): DraftInputs["measures"] {
 	return inputs.measures.filter((measure) =>
-		cropKey === "all" ? measure.acrossCrops : (measure.crops?.includes(cropKey) ?? true),
+		cropKey === "all" ? measure.acrossCrops : measure.crops.includes(cropKey),
 	);
 }
 
