@@ -86,6 +86,7 @@ export async function composeReport(reportId: string, to: ReportMailing): Promis
 			correction: report.correction && wordsIn(report.correction, language),
 			link: address,
 			pdfLink: files.includes(language) ? `${address}/${report.version}-${language}.pdf` : null,
+			changeAddress: `${env().BASE_URL}/subscribe`,
 			stopAddress,
 		},
 		t,

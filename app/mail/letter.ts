@@ -6,28 +6,30 @@ export type Letter = {
 	heading: string;
 	paragraphs: Paragraph[];
 	footer: string;
+	/** Where what is sent can be chosen anew. */
+	change?: { link: string; label: string };
 	/** The last line: where mail of this kind is stopped. */
 	stop: { link: string; label: string } | null;
 };
 
 /** The letter as plain text: what a reader without HTML sees, with every address written out. */
-export function asText({ paragraphs, footer, stop }: Letter): string {
+export function asText({ paragraphs, footer, change, stop }: Letter): string {
 	const body = paragraphs.map((paragraph) =>
 		typeof paragraph === "string" ? paragraph : `${paragraph.label}:\n${paragraph.link}`,
 	);
-	const ending = stop ? [footer, `${stop.label}:`, stop.link] : [footer];
-	return `${[...body, ["-- ", ...ending].join("\n")].join("\n\n")}\n`;
+	const ways = [change, stop].flatMap((way) => (way ? [`${way.label}:`, way.link] : []));
+	return `${[...body, ["-- ", footer, ...ways].join("\n")].join("\n\n")}\n`;
 }
 
 /**
  * The letter as HTML, in one column, readable without pictures and with styles off. Every word in it is escaped. Colours
  * stand inline, as many programs drop style sheets; those that keep them, and are set to dark, get dark ones.
  */
-export function asHtml({ language, subject, heading, paragraphs, footer, stop }: Letter): string {
+export function asHtml({ language, subject, heading, paragraphs, footer, change, stop }: Letter): string {
 	const body = paragraphs.map((paragraph) =>
 		typeof paragraph === "string" ? `<p style="${style.text}">${withBreaks(paragraph)}</p>` : button(paragraph),
 	);
-	const end = stop ? `<br>${anchor(stop, stop.label)}` : "";
+	const end = [change, stop].map((way) => (way ? `<br>${anchor(way, way.label)}` : "")).join("");
 	return [
 		`<!doctype html>`,
 		`<html lang="${escapeHtml(language)}">`,

@@ -13,6 +13,7 @@ export type ReportLetter = {
 	correction: string | null;
 	link: string;
 	pdfLink: string | null;
+	changeAddress: string;
 	stopAddress: string;
 };
 
@@ -33,6 +34,7 @@ export function writeReportLetter(fields: ReportLetter, t: TFunction): Letter {
 		heading: title,
 		paragraphs,
 		footer: t("report:mail.footer", { network }),
+		change: { link: fields.changeAddress, label: t("report:mail.change") },
 		stop: { link: fields.stopAddress, label: t("report:mail.stop") },
 	};
 }

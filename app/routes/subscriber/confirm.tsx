@@ -4,6 +4,7 @@ import type { Route } from "./+types/confirm";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import { Button, ButtonLink } from "#app/components/button.tsx";
 import { Page } from "#app/components/page.tsx";
+import { speakLikeMail } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
 import { idOfToken } from "#app/mail/id-token.server.ts";
 import { confirmRequest, findRequest } from "#app/publish/readership/subscribers.server.ts";
@@ -11,16 +12,19 @@ import { confirmRequest, findRequest } from "#app/publish/readership/subscribers
 const none = { kind: "none" } as const;
 
 /** Looks only, for mail scanners open links too: the button confirms. */
-export async function loader({ params }: Route.LoaderArgs) {
+export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const requestId = idOfToken("confirm subscription", params.token);
-	const request = requestId && (await scopedTransaction(none, (trx) => findRequest(trx, requestId)));
+	const asked = requestId && (await scopedTransaction(none, (trx) => findRequest(trx, requestId)));
+	if (asked) await speakLikeMail(context, request, asked.language);
 	// A request that was confirmed is gone; its link shows the same as one that is too old.
-	return { waiting: Boolean(request) };
+	return { waiting: Boolean(asked) };
 }
 
-export async function action({ params }: Route.ActionArgs) {
+export async function action({ context, params, request }: Route.ActionArgs) {
 	const requestId = idOfToken("confirm subscription", params.token);
 	if (!requestId) throw refusal("stop_link_not_valid");
+	const asked = await scopedTransaction(none, (trx) => findRequest(trx, requestId));
+	if (asked) await speakLikeMail(context, request, asked.language);
 	const outcome = await scopedTransaction(none, (trx) => confirmRequest(trx, requestId));
 	return { confirmed: outcome === "confirmed" };
 }

@@ -83,6 +83,7 @@ function SubscribeFields({ crops, states, language, sent }: FieldsProps) {
 				type="email"
 				autoComplete="email"
 				label={t("subscribe.email")}
+				help={t("subscribe.again")}
 				defaultValue={typed("email")}
 				problem={problem("email")}
 			/>
