@@ -1,7 +1,7 @@
 import { type RawBuilder, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
+import { countRows, type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
 import { searchPattern } from "#app/lib/search-pattern.ts";
 import { compareCrops } from "./crops.ts";
 import type { OperationQuery } from "./operation.schema.ts";
@@ -18,7 +18,7 @@ export type OperationRow = Awaited<ReturnType<typeof listOperations>>["rows"][nu
 /** A page of operations, those of equal sort values by id. */
 export async function listOperations(trx: Trx, viewer: Associate, query: OperationQuery, narrowing: Narrowing = null) {
 	const matching = matchingOperations(trx, viewer, query, narrowing);
-	const { total } = await matching.select((eb) => eb.fn.countAll<number>().as("total")).executeTakeFirstOrThrow();
+	const count = await countRows(trx, (most) => toCount(trx, viewer, query, narrowing).limit(most));
 	const order = orderOf(query);
 	const page = await pageByKey(order, query, pageSize, ({ beyond, inOrder, place, limit }) =>
 		matching
@@ -33,7 +33,7 @@ export async function listOperations(trx: Trx, viewer: Associate, query: Operati
 		viewer,
 		page.rows.map(({ operationId }) => operationId),
 	);
-	return { ...page, rows, total };
+	return { ...page, ...count, rows };
 }
 
 /** The ids of all that match, in the list's order. */
@@ -96,9 +96,31 @@ const mailState = {
 	stopped: sql<boolean>`not o.mail_wanted`,
 };
 
+/** Found by what its own row and its county tell. */
+function isNamed(q: string) {
+	const pattern = searchPattern(q);
+	return sql<boolean>`(o.name ~* ${pattern} or o.contact_name ~* ${pattern} or o.email ~* ${pattern} or o.phone ~* ${pattern}
+		or c.name ~* ${pattern})`;
+}
+
+function isOwnedByNamed(q: string) {
+	return sql<boolean>`exists (select from directory.owner w where w.owner_id = o.owner_id and w.name ~* ${searchPattern(q)})`;
+}
+
+/**
+ * One for each operation that matches. Owners are gone through only after all that is found without them: to count no further
+ * than countable takes a tenth of them all (50,000 operations: 20 instead of 80 ms).
+ */
+function toCount(trx: Trx, viewer: Associate, query: OperationQuery, narrowing: Narrowing) {
+	const rows = matchingOperations(trx, viewer, { ...query, q: "" }, narrowing).select(sql.lit(1).as("one"));
+	const { q } = query;
+	if (q === "") return rows;
+	const byOwner = rows.where(sql<boolean>`${isNamed(q)} is not true`).where(isOwnedByNamed(q));
+	return rows.where(isNamed(q)).unionAll(byOwner);
+}
+
 function matchingOperations(trx: Trx, viewer: Associate, query: OperationQuery, narrowing: Narrowing) {
 	const { q, state, district, crop, mail } = query;
-	const pattern = searchPattern(q);
 	// Owners stay out of it but for a search: that one may see an owner is found out for each row (120 of 140 ms for 10,000).
 	return trx
 		.selectFrom("directory.operation as o")
@@ -109,18 +131,7 @@ function matchingOperations(trx: Trx, viewer: Associate, query: OperationQuery, 
 		.$if(district !== null, (rows) => rows.where("c.district_key", "=", district!))
 		.$if(mail !== "any", (rows) => rows.where(mailState[mail as keyof typeof mailState]))
 		.$if(narrowing !== null, (rows) => rows.where(narrowing!))
-		.$if(q !== "", (rows) =>
-			rows.where((eb) =>
-				eb.or([
-					eb("o.name", "~*", pattern),
-					eb("o.contact_name", "~*", pattern),
-					eb("o.email", "~*", pattern),
-					eb("o.phone", "~*", pattern),
-					eb("c.name", "~*", pattern),
-					sql<boolean>`exists (select from directory.owner w where w.owner_id = o.owner_id and w.name ~* ${pattern})`,
-				]),
-			),
-		)
+		.$if(q !== "", (rows) => rows.where((eb) => eb.or([isNamed(q), isOwnedByNamed(q)])))
 		.$if(crop !== null, (rows) =>
 			rows.where(
 				sql<boolean>`exists (select from directory.planting p where p.operation_id = o.operation_id

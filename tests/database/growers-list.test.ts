@@ -92,8 +92,9 @@ describe("the list", () => {
 				select owner_id, 'Many of a name', '19103', '19', 'Nobody' from o returning operation_id)
 			insert into directory.planting (operation_id, crop_key, bearing_trees) select operation_id, 'hazelnut', 7 from p`,
 		);
-		const { rows, total } = await list(iowa, { crop: "hazelnut", sort: "trees", direction: "desc" });
-		expect([rows.length, total, rows[0]?.bearingTrees]).toEqual([50, 3000, 7]);
+		const { rows, ...counted } = await list(iowa, { crop: "hazelnut", sort: "trees", direction: "desc" });
+		expect([rows.length, rows[0]?.bearingTrees]).toEqual([50, 7]);
+		expect(counted).toMatchObject({ total: 1000, moreThanTotal: true });
 		const query = OperationQuery.parse({ crop: "hazelnut" });
 		expect(new Set(await asDesk(iowa, (trx) => listMatchingIds(trx, iowa, query))).size).toBe(3000);
 	});

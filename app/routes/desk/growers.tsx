@@ -68,7 +68,7 @@ export async function action({ context, request }: Route.ActionArgs) {
 }
 
 export default function Growers({ loaderData, actionData }: Route.ComponentProps) {
-	const { rows, total, before, after, query, views, parts } = loaderData;
+	const { rows, total, moreThanTotal, before, after, query, views, parts } = loaderData;
 	const { t } = useTranslation("growers");
 	return (
 		<Page
@@ -98,9 +98,9 @@ export default function Growers({ loaderData, actionData }: Route.ComponentProps
 				{query.after && <input type="hidden" name="after" value={placeText(query.after)} />}
 				{query.before && <input type="hidden" name="before" value={placeText(query.before)} />}
 				<GrowerTable rows={rows} query={query} />
-				{rows.length > 0 && <ChooseGrowers shown={rows.length} total={total} />}
+				{rows.length > 0 && <ChooseGrowers shown={rows.length} total={total} moreThanTotal={moreThanTotal} />}
 			</Form>
-			<KeyPaging before={before} after={after} total={total} />
+			<KeyPaging before={before} after={after} total={total} moreThanTotal={moreThanTotal} />
 		</Page>
 	);
 }
