@@ -187,12 +187,16 @@ export interface CollectEditFinding {
   crop_key: string | null;
   edit_finding_id: Generated<string>;
   effect: number | null;
+  is_sent: Generated<boolean>;
   made_at: Generated<Timestamp>;
   moved: Json | null;
+  operation_id: Generated<string>;
   outcome: string | null;
   planting_id: string | null;
   question_key: string;
   response_id: string;
+  state_fips: Generated<string>;
+  survey_id: Generated<string>;
   told: Generated<Json>;
   version: Generated<number>;
 }

@@ -268,13 +268,28 @@ describe("another state's findings", () => {
 
 	test("go out of everybody's sight when the grower takes the answers back", async () => {
 		const { surveyId, operationId, findings } = await oddSurvey(owner, iowa);
+		const answered = "where survey_id = $1 and operation_id = $2";
+		const ids = [surveyId, operationId];
 		await owner.query(
 			`update collect.response set withdrawn_at = now(), receipt_code = null, first_submitted_at = null, submitted_at = null
-			where survey_id = $1 and operation_id = $2`,
-			[surveyId, operationId],
+			${answered}`,
+			ids,
 		);
 		expect((await queue(iowa, surveyId)).total).toBe(0);
+		expect((await counted(iowa)).get(surveyId)).toBeUndefined();
 		expect(await findingsOf(owner, surveyId, operationId)).toHaveLength(findings.length);
+		await owner.query(
+			`update collect.response set withdrawn_at = null, receipt_code = $3, first_submitted_at = now(),
+				submitted_at = now() ${answered}`,
+			[...ids, surveyId],
+		);
+		expect((await counted(iowa)).get(surveyId)).toBe(2);
+		// What each keeps of its response is what stands there, of all findings here.
+		expect(await count(owner, "collect.edit_finding")).toBeGreaterThan(0);
+		const astray = `collect.edit_finding f join collect.response r using (response_id)
+			where (f.survey_id, f.operation_id, f.state_fips, f.is_sent)
+				is distinct from (r.survey_id, r.operation_id, r.state_fips, r.submitted_at is not null)`;
+		expect(await count(owner, astray)).toBe(0);
 	});
 });
 

@@ -103,6 +103,7 @@ const ownersRights: Record<string, string> = {
 	"collect.refuse_mixed_frame": "a trigger, which answers nothing",
 	"collect.refuse_rehearsal": "a trigger, which answers nothing",
 	"collect.rehearsal_of": "the id of a draft's rehearsal",
+	"collect.tell_findings": "a trigger, which answers nothing",
 	"collect.tell_words": "a trigger, which answers nothing",
 	"collect.tell_words_of_survey": "a trigger, which answers nothing",
 };
