@@ -1,4 +1,4 @@
-import { sql } from "kysely";
+import { type RawBuilder, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { countRows, type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
@@ -28,21 +28,35 @@ export async function listPaperForms(
 	const matching = selectForms(trx, viewer, surveyId)
 		.$if(operationId !== undefined, (rows) => rows.where("f.operation_id", "=", operationId!))
 		.$if(operationId === undefined, (rows) => rows.where(isWaitedFor))
-		.$if(operationId === undefined && query.area !== "all", (rows) => rows.where(liesIn(query.area)))
 		.$if(operationId === undefined && query.show === "no_address", (rows) =>
 			rows.where(sql<boolean>`coalesce(o.email, '') = ''`),
 		);
-	const count = await countRows(trx, (most) => matching.select(sql.lit(1).as("one")).limit(most));
-	if (operationId !== undefined && count.total === 0) return undefined;
-	const page = await pageByKey(byPlace, query, pageSize, ({ beyond, inOrder, place, limit }) =>
+	const inArea = operationId === undefined && query.area !== "all" ? liesIn(query.area) : null;
+	const count = await countRows(trx, (most) =>
 		matching
-			.where(beyond)
-			.select(["f.operation_id as operationId", "o.name", "o.contact_name as contactName", "c.name as countyName"])
-			.select(["c.county_fips as countyFips", "o.language", place.as("place")])
+			.$if(inArea !== null, (rows) =>
+				rows.innerJoin("directory.county as c", "c.county_fips", "f.county_fips").where(inArea!),
+			)
+			.select(sql.lit(1).as("one"))
+			.limit(most),
+	);
+	if (operationId !== undefined && count.total === 0) return undefined;
+	// County by county, as far as the page needs: to put 14,000 in order for its 50 took 70 ms.
+	const page = await pageByKey(byPlace, query, pageSize, ({ beyond, reach, direction, inOrder, place, limit }) => {
+		const here = matching
+			.where(sql<boolean>`f.county_fips = k.county_fips`)
+			.select(["f.operation_id as operationId", "o.name", "o.contact_name as contactName", "o.language"]);
+		const first = trx.selectFrom(here.as("w")).selectAll("w").where(beyond).orderBy(inOrder).limit(limit);
+		return trx
+			.selectFrom(selectCounties(trx, viewer, direction, inArea).as("k"))
+			.where(reach(2))
+			.innerJoinLateral(first.as("w"), (join) => join.onTrue())
+			.select(["w.operationId", "w.name", "w.contactName", "k.name as countyName", "k.county_fips as countyFips"])
+			.select(["w.language", place.as("place")])
 			.orderBy(inOrder)
 			.limit(limit)
-			.execute(),
-	);
+			.execute();
+	});
 	const plantings = await listPlantingsOf(
 		trx,
 		surveyId,
@@ -79,29 +93,44 @@ export function listPaperAreas(trx: Trx, viewer: Associate, surveyId: string) {
 }
 export type PaperArea = Awaited<ReturnType<typeof listPaperAreas>>[number];
 
-/** A state or county by its code, otherwise a district. */
+/** A county's state or itself by its code, otherwise its district. */
 function liesIn(area: string) {
-	if (/^\d{2}$/.test(area)) return sql<boolean>`f.state_fips = ${area}`;
-	if (/^\d{5}$/.test(area)) return sql<boolean>`f.county_fips = ${area}`;
+	if (/^\d{2}$/.test(area)) return sql<boolean>`c.state_fips = ${area}`;
+	if (/^\d{5}$/.test(area)) return sql<boolean>`c.county_fips = ${area}`;
 	return sql<boolean>`c.district_key = ${area}`;
 }
 
 const byPlace: Order = {
 	keys: [
-		{ by: sql.ref("s.name"), kind: "text" },
-		{ by: sql.ref("c.name"), kind: "text" },
-		{ by: sql.ref("o.name"), kind: "text" },
-		{ by: sql.ref("f.operation_id"), kind: "uuid" },
+		{ by: sql.ref("k.state"), kind: "text" },
+		{ by: sql.ref("k.name"), kind: "text" },
+		{ by: sql.ref("w.name"), kind: "text" },
+		{ by: sql.ref("w.operationId"), kind: "uuid" },
 	],
 	direction: "asc",
 };
+
+/** Put in order by themselves, so that the planner can take the first and leave the rest. */
+function selectCounties(
+	trx: Trx,
+	viewer: Associate,
+	direction: Order["direction"],
+	inArea: RawBuilder<boolean> | null,
+) {
+	return trx
+		.selectFrom("directory.county as c")
+		.innerJoin("directory.state as s", "s.state_fips", "c.state_fips")
+		.where("c.state_fips", "in", viewer.stateFips)
+		.$if(inArea !== null, (counties) => counties.where(inArea!))
+		.select(["s.name as state", "c.name", "c.county_fips"])
+		.orderBy("s.name", direction)
+		.orderBy("c.name", direction);
+}
 
 function selectForms(trx: Trx, viewer: Associate, surveyId: string) {
 	return trx
 		.selectFrom("collect.frame_operation as f")
 		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
-		.innerJoin("directory.county as c", "c.county_fips", "f.county_fips")
-		.innerJoin("directory.state as s", "s.state_fips", "f.state_fips")
 		.where("f.survey_id", "=", surveyId)
 		.where("f.state_fips", "in", viewer.stateFips)
 		.where("o.status", "=", "active");

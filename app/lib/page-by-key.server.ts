@@ -54,7 +54,15 @@ export type SortKey = { by: Column; kind: keyof typeof keyKinds };
 /** All keys go one way, so that an index on them serves the list from either end; one that goes the other way is negated. */
 export type Order = { keys: readonly SortKey[]; direction: "asc" | "desc" };
 /** What a query is given to read one page: a condition, an order, how many rows, and what to select as their `place`. */
-export type PagePart = { beyond: RawBuilder<boolean>; inOrder: Column; place: RawBuilder<Place>; limit: number };
+export type PagePart = {
+	beyond: RawBuilder<boolean>;
+	/** As `beyond`, of the first so many keys alone, and true where they are alike: which groups of rows can be on the page. */
+	reach: (keys: number) => RawBuilder<boolean>;
+	inOrder: Column;
+	place: RawBuilder<Place>;
+	limit: number;
+	direction: Order["direction"];
+};
 
 const otherWay = { asc: "desc", desc: "asc" } as const;
 
@@ -102,10 +110,16 @@ function placeIn({ keys }: Order, place: Place | undefined): Place | null {
 }
 
 function partOf({ keys, direction }: Order, from: Place | null, limit: number): PagePart {
-	const values = from && sql.join(keys.map(({ kind }, i) => keyKinds[kind].read(from[i])));
-	const side = sql.raw(direction === "asc" ? ">" : "<");
+	const side = direction === "asc" ? ">" : "<";
+	const compared = (by: string, first: readonly SortKey[]) =>
+		from
+			? sql<boolean>`(${sql.join(first.map((key) => key.by))}) ${sql.raw(by)}
+				(${sql.join(first.map(({ kind }, i) => keyKinds[kind].read(from[i])))})`
+			: sql<boolean>`true`;
 	return {
-		beyond: values ? sql<boolean>`(${sql.join(keys.map(({ by }) => by))}) ${side} (${values})` : sql<boolean>`true`,
+		beyond: compared(side, keys),
+		reach: (count) => compared(`${side}=`, keys.slice(0, count)),
+		direction,
 		inOrder: sql.join(keys.map(({ by }) => sql`${by} ${sql.raw(direction)}`)),
 		place: sql<Place>`jsonb_build_array(${sql.join(keys.map(({ by, kind }) => keyKinds[kind].told(by)))})`,
 		limit,

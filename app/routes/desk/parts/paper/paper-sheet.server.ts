@@ -10,6 +10,7 @@ import { resources } from "#app/i18n/resources.ts";
 import { i18nextSettings } from "#app/i18n/settings.ts";
 import { formatterFor } from "#app/lib/format.ts";
 import { helpContact } from "#app/lib/help-contact.ts";
+import { onceEach } from "#app/lib/sentence-pattern.ts";
 
 /** One form as it is printed, in one language: a page's own language has no part in it. */
 export type PaperSheet = {
@@ -39,13 +40,14 @@ export type PaperQuestion = {
 	rows: number;
 };
 
-/** Every form in the language or languages asked for. */
+/** Every form in the language or languages asked for. What forms have in common is put into words once, and sent once. */
 export async function paperSheets(papers: PaperForms, query: PaperQuery): Promise<PaperSheet[]> {
 	const words = createInstance();
 	await words.init({ ...i18nextSettings, resources, lng: "en" });
-	const sheetOf = (form: PaperForm, language: Language) =>
-		paperSheet(papers, form, language, words.getFixedT(language, "answered") as TFunction);
-	return papers.forms.flatMap((form) => languagesOf(query, form).map((language) => sheetOf(form, language)));
+	const inLanguage = onceEach((language: Language) =>
+		sheetsIn(papers, language, words.getFixedT(language, "answered") as TFunction),
+	);
+	return papers.forms.flatMap((form) => languagesOf(query, form).map((language) => inLanguage(language)(form)));
 }
 
 function languagesOf({ language }: PaperQuery, form: PaperForm): Language[] {
@@ -53,33 +55,32 @@ function languagesOf({ language }: PaperQuery, form: PaperForm): Language[] {
 	return [language === "own" ? form.language : language];
 }
 
-function paperSheet({ survey, definition }: PaperForms, form: PaperForm, language: Language, t: TFunction): PaperSheet {
+function sheetsIn(
+	{ survey, definition }: PaperForms,
+	language: Language,
+	t: TFunction,
+): (form: PaperForm) => PaperSheet {
 	const format = formatterFor(language, t);
-	const title = t("answered:paper.title", { survey: wordsIn(survey.title, language), season: survey.season });
 	const pledges = ["use", "who", "never", "law", "free"] as const;
-	return {
-		key: `${form.operationId} ${language}`,
+	const onEverySheet = {
 		language,
-		title,
-		number: t("answered:paper.number", { number: formNumberOf(form.operationId) }),
-		lines: [form.name, form.contactName, countyName(t, { name: form.countyName, countyFips: form.countyFips })],
+		title: t("answered:paper.title", { survey: wordsIn(survey.title, language), season: survey.season }),
 		returnBy: t("answered:paper.returnBy", {
 			day: format.dayOf(survey.closesAt, survey.timeZone),
 			phone: helpContact.phone,
 		}),
 		pledge: { title: t("grower:pledge.title"), lines: pledges.map((part) => t(`grower:pledge.${part}`)) },
 		howTo: t("answered:paper.howTo"),
-		steps: stepsOf(definition, form).map((step) => ({
-			key: step.key,
-			title: titleOf(step, language, t),
-			notes: [
-				...(step.screen.help ? [wordsIn(step.screen.help, language)] : []),
-				...(step.screen.condition ? [t("answered:paper.ifApplies")] : []),
-			],
-			questions: step.screen.questions.map((question) => paperQuestion(question, step, language, t)),
-		})),
 		thanks: t("answered:paper.thanks"),
 	};
+	const stepOf = stepsIn(language, t);
+	return (form) => ({
+		...onEverySheet,
+		key: `${form.operationId} ${language}`,
+		number: t("answered:paper.number", { number: formNumberOf(form.operationId) }),
+		lines: [form.name, form.contactName, countyName(t, { name: form.countyName, countyFips: form.countyFips })],
+		steps: stepsOf(definition, form).map(stepOf),
+	});
 }
 
 /** Photos come from the grower's phone alone. */
@@ -92,7 +93,35 @@ function stepsOf(definition: FormDefinition, form: PaperForm): Step[] {
 		.filter(({ screen }) => screen.questions.length > 0);
 }
 
-function titleOf({ screen, planting }: Step, language: Language, t: TFunction): string {
+/** A step of each screen and crop in words: of a planting's own there are its name, and how many trees are known of. */
+function stepsIn(language: Language, t: TFunction): (step: Step) => PaperSheet["steps"][number] {
+	const inWords = onceEach((_of: string, step: Step) => ({
+		notes: [
+			...(step.screen.help ? [wordsIn(step.screen.help, language)] : []),
+			...(step.screen.condition ? [t("answered:paper.ifApplies")] : []),
+		],
+		questions: step.screen.questions.map((question) => paperQuestion(question, step, language, t)),
+	}));
+	const titleOf = onceEach((_of: string, step: Step) => stepTitle(step, language, t));
+	const { number } = formatterFor(language, t);
+	return (step) => {
+		const { screen, planting } = step;
+		const of = `${screen.key} ${planting?.cropKey ?? ""}`;
+		const { notes, questions } = inWords(of, step);
+		return {
+			key: step.key,
+			title: titleOf(`${of} ${planting?.cultivar ?? ""}`, step),
+			notes,
+			questions: questions.map((told, i) => {
+				const question = screen.questions[i]!;
+				const isKnown = planting && question.type === "number" && question.prefill === "bearing_trees";
+				return isKnown ? { ...told, known: t("answered:paper.known", { value: number(planting.bearingTrees) }) } : told;
+			}),
+		};
+	};
+}
+
+function stepTitle({ screen, planting }: Step, language: Language, t: TFunction): string {
 	const title = wordsIn(screen.title, language);
 	if (!planting) return title;
 	const { cultivar, cropKey } = planting;
@@ -104,18 +133,14 @@ function titleOf({ screen, planting }: Step, language: Language, t: TFunction): 
 }
 
 function paperQuestion(question: Question, step: Step, language: Language, t: TFunction): PaperQuestion {
-	const { planting } = step;
 	const isNote = !question.required && (question.type === "short_text" || question.type === "long_text");
 	const isShare = step.screen.sumToHundred?.includes(question.key) ?? false;
-	const isKnown = question.type === "number" && question.prefill === "bearing_trees" && planting !== null;
 	return {
 		key: question.key,
 		text: wordsIn(question.text, language),
 		help: question.help ? wordsIn(question.help, language) : null,
 		...asked(question, step, language, t),
-		known: isKnown
-			? t("answered:paper.known", { value: formatterFor(language, t).number(planting.bearingTrees) })
-			: null,
+		known: null,
 		silences: isNote || isShare ? [] : [t("grower:unknown.dont_know"), t("grower:unknown.refused")],
 	};
 }
