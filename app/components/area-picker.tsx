@@ -1,5 +1,5 @@
 import { useTranslation } from "react-i18next";
-import { fieldId, inputClasses } from "./field-frame.tsx";
+import { FieldFrame, fieldId, inputClasses } from "./field-frame.tsx";
 
 export type PickableArea = {
 	key: string;
@@ -16,11 +16,16 @@ export function AreaPicker({ areas, name, label, defaultValue }: AreaPickerProps
 	const wide = areas.filter(({ kind }) => kind === "region" || kind === "state");
 	const groups = groupsOf(areas.filter(({ kind }) => kind === "district" || kind === "county"));
 	return (
-		<div>
-			<label htmlFor={fieldId(name)} className="block text-sm font-bold">
+		<FieldFrame>
+			<label htmlFor={fieldId(name)} className="font-bold">
 				{label}
 			</label>
-			<select id={fieldId(name)} name={name} defaultValue={defaultValue ?? ""} className={`${inputClasses()} mt-1`}>
+			<select
+				id={fieldId(name)}
+				name={name}
+				defaultValue={defaultValue ?? ""}
+				className={`${inputClasses()} mt-1.5 block`}
+			>
 				{wide.map((area) => (
 					<option key={area.key} value={area.key}>
 						{area.name}
@@ -36,7 +41,7 @@ export function AreaPicker({ areas, name, label, defaultValue }: AreaPickerProps
 					</optgroup>
 				))}
 			</select>
-		</div>
+		</FieldFrame>
 	);
 }
 

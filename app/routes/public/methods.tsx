@@ -64,7 +64,7 @@ export default function Methods({ loaderData }: Route.ComponentProps) {
 			</Section>
 			<Section title={t("methods.weighed.title")} id="weighed">
 				<Text lines={[t("methods.weighed.plain"), settings.weighed, t("methods.weighed.ratio")]} />
-				<Text lines={[t("methods.weighed.missing")]} />
+				<Text lines={[t("methods.weighed.once"), t("methods.weighed.missing")]} />
 			</Section>
 			<Section title={t("methods.sure.title")} id="sure">
 				<Text lines={[t("methods.sure.plain"), t("methods.sure.words"), settings.cutOffs, settings.dayCutOffs]} />

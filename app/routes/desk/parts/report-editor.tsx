@@ -69,7 +69,7 @@ export function ReportEditor({ report, offered, cautionsAdded, answer }: ReportE
 						label={labels.summary ?? ""}
 						value={content.summary}
 						problems={answer?.problems}
-						rows={3}
+						rows={5}
 					/>
 				</Section>
 				<Section title={t("report_editor.blocks")} id="field-blocks">
