@@ -179,6 +179,21 @@ test("the report's mail tells the same figures, and one post of a mail program e
 	expect((await fetch(address, post)).status).toBe(200);
 });
 
+test("who subscribes again chooses anew, and is answered in the language of the mail", async () => {
+	const visitor = httpVisitor(stack.baseUrl);
+	const ask = async (language: string, heading: string, crops: string) => {
+		await visitor.post("/subscribe", { email: `bo@quailbend.example`, language, crops });
+		const { text } = await mailWith(
+			({ to, text: body }) => to.includes("bo@quailbend.example") && body.includes(heading),
+		);
+		return (await visitor.post(/https?:\S+\/subscribe\/[\w-]{64}/.exec(text)?.[0] ?? "", {})).text;
+	};
+	expect(await ask("es", "oprima", "plum")).toContain("Listo: recibirá los informes");
+	expect(await ask("en", "press the button", "apple")).toContain("Done: reports will come");
+	const { rows } = await owner.query("select language, crop_keys from readership.subscriber");
+	expect(rows).toEqual([{ language: "en", crop_keys: ["apple"] }]);
+});
+
 test("report and subscription meet WCAG by axe, on a phone too, and the page needs no sideways scrolling", async () => {
 	const page = await openPage(browser, { viewport: { width: 375, height: 740 } });
 	for (const path of [`/reports/${slug}`, "/reports", "/subscribe"]) {

@@ -11,6 +11,9 @@ import { confirmRequest, findRequest } from "#app/publish/readership/subscribers
 
 const none = { kind: "none" } as const;
 
+// Without scripts the answer to the button is made in the request that pressed it, and so in the language of the mail.
+export const handle = { bare: true };
+
 /** Looks only, for mail scanners open links too: the button confirms. */
 export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const requestId = idOfToken("confirm subscription", params.token);

@@ -11,6 +11,9 @@ import { idOfToken } from "#app/mail/id-token.server.ts";
 
 const none = { kind: "none" } as const;
 
+// Without scripts the answer to the button is made in the request that pressed it, and so in the language of the mail.
+export const handle = { bare: true };
+
 /** Looks only, for mail scanners open links too. */
 export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const followId = idOfToken("unfollow", params.token);
@@ -21,9 +24,11 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 }
 
 /** One press, also the mail program's own (RFC 8058), which posts no step of ours. */
-export async function action({ params }: Route.ActionArgs) {
+export async function action({ context, params, request }: Route.ActionArgs) {
 	const followId = idOfToken("unfollow", params.token);
 	if (!followId) throw refusal("stop_link_not_valid");
+	const follow = await scopedTransaction(none, (trx) => findFollow(trx, followId));
+	if (follow) await speakLikeMail(context, request, follow.language);
 	await scopedTransaction(none, (trx) => endFollow(trx, followId));
 	return { done: true };
 }

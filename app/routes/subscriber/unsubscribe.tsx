@@ -11,6 +11,9 @@ import { findSubscriber, removeSubscriber } from "#app/publish/readership/subscr
 
 const none = { kind: "none" } as const;
 
+// Without scripts the answer to the button is made in the request that pressed it, and so in the language of the mail.
+export const handle = { bare: true };
+
 /** Looks only, for mail scanners open links too. */
 export async function loader({ context, params, request }: Route.LoaderArgs) {
 	const subscriberId = idOfToken("unsubscribe", params.token);
@@ -21,9 +24,11 @@ export async function loader({ context, params, request }: Route.LoaderArgs) {
 }
 
 /** One press, also the mail program's own (RFC 8058), which posts no step of ours. The address is forgotten at once. */
-export async function action({ params }: Route.ActionArgs) {
+export async function action({ context, params, request }: Route.ActionArgs) {
 	const subscriberId = idOfToken("unsubscribe", params.token);
 	if (!subscriberId) throw refusal("stop_link_not_valid");
+	const subscriber = await scopedTransaction(none, (trx) => findSubscriber(trx, subscriberId));
+	if (subscriber) await speakLikeMail(context, request, subscriber.language);
 	await scopedTransaction(none, (trx) => removeSubscriber(trx, subscriberId));
 	return { done: true };
 }
