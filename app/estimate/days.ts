@@ -5,7 +5,7 @@ import {
 	histogramStrata,
 	quantileEstimate,
 	type QuantileFigure,
-	quantileValue,
+	quartileValues,
 	type WeightedCounts,
 } from "#app/estimate/quantile.ts";
 import { daySteadiness, type SteadinessCutOffs } from "#app/estimate/steadiness.ts";
@@ -57,8 +57,9 @@ export function dayOf({ present, median, ...parts }: DayParts, cutOffs?: Steadin
 	const { respondents, joins, everybody } = parts;
 	const found = { respondents, joins, cv: null };
 	const empty = { standardError: null, lower: null, upper: null, steadiness: "rough" } as const;
-	const value = quantileValue(present, 0.5);
-	if (value === null) return { ...found, ...empty, value, missing: "no_respondents" };
+	const values = quartileValues(present);
+	if (values === null) return { ...found, ...empty, value: null, missing: "no_respondents" };
+	const { median: value, ...quartiles } = values;
 	if (respondents === 1) return { ...found, ...empty, value, missing: "one_respondent" };
 
 	const { lower, upper, standardError } = everybody ? { lower: value, upper: value, standardError: 0 } : median()!;
@@ -71,6 +72,6 @@ export function dayOf({ present, median, ...parts }: DayParts, cutOffs?: Steadin
 		upper,
 		steadiness: daySteadiness({ halfWidth, respondents, everybody }, cutOffs),
 		missing: null,
-		quartiles: { first: quantileValue(present, 0.25)!, third: quantileValue(present, 0.75)! },
+		quartiles,
 	};
 }

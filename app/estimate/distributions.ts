@@ -95,6 +95,20 @@ export function betaQuantile(p: number, a: number, b: number): number {
 export function tQuantile(p: number, df: number): number {
 	if (!(df > 0 && p > 0 && p < 1)) throw new RangeError(`no t quantile at ${p} with ${df} degrees of freedom`);
 	if (p === 0.5) return 0;
+	const key = `${p} ${df}`;
+	const known = knownTQuantiles.get(key);
+	if (known !== undefined) return known;
+	const found = searchTQuantile(p, df);
+	// More than a survey's areas have; so many more would only be kept.
+	if (knownTQuantiles.size >= 10_000) knownTQuantiles.clear();
+	knownTQuantiles.set(key, found);
+	return found;
+}
+
+/** Each is searched for by steps, and every county of a table asks for a few of the same. */
+const knownTQuantiles = new Map<string, number>();
+
+function searchTQuantile(p: number, df: number): number {
 	// The share of |t| below a bound is a beta probability of t² / (df + t²).
 	const y = betaQuantile(Math.abs(2 * p - 1), 0.5, df / 2);
 	return Math.sign(p - 0.5) * Math.sqrt((df * y) / (1 - y));

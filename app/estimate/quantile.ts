@@ -24,9 +24,16 @@ export function histogramStrata(frame: StrataFrame, rows: readonly DayTally[]): 
 	return frame.strata.flatMap(({ stratumKeys, frameSize, respondents }) => {
 		if (respondents === 0) return [];
 		const own = rows.filter(({ stratumKey }) => stratumKeys.includes(stratumKey));
-		const counts = own.flatMap(({ days }) => days ?? []);
+		const counts = addedUp(own);
 		return [{ weight: frameSize / respondents, samplingFraction: respondents / frameSize, respondents, counts }];
 	});
+}
+
+/** The rows' counts as one histogram: a state's would be gone through a county at a time, and for every quantile anew. */
+function addedUp(rows: readonly DayTally[]): { value: number; n: number }[] {
+	const counts = new Map<number, number>();
+	for (const { days } of rows) for (const { value, n } of days ?? []) counts.set(value, (counts.get(value) ?? 0) + n);
+	return [...counts].map(([value, n]) => ({ value, n }));
 }
 
 /**
@@ -112,14 +119,14 @@ export function quantileByShare(
 	return { ...figure, lower, upper, standardError };
 }
 
-/** The value alone, which a stratum of one respondent has too. @returns null where nobody of the domain answered. */
-export function quantileValue(
+/** Quartiles and median alone, which a stratum of one respondent has too. @returns null where nobody of the domain answered. */
+export function quartileValues(
 	strata: readonly WeightedCounts[],
-	p: number,
-	rule: QuantileRule = "lower",
-): number | null {
+): { first: number; median: number; third: number } | null {
 	const steps = distribution(strata);
-	return steps.length === 0 ? null : valueAt(steps, p, rule);
+	if (steps.length === 0) return null;
+	const [first, median, third] = [0.25, 0.5, 0.75].map((p) => valueAt(steps, p, "lower")) as [number, number, number];
+	return { first, median, third };
 }
 
 /** Values in rising order, each with the weight at or below it. */

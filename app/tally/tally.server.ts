@@ -35,6 +35,18 @@ export async function listTallies(
 		.execute();
 }
 
+/** Whether any answer of a survey is in a tally, whatever it is about. */
+export async function isAnyTallied(trx: Transaction<DB>, surveyId: string): Promise<boolean> {
+	const found = await trx
+		.selectFrom("collect.tally")
+		.where("survey_id", "=", surveyId)
+		.where("n", ">", 0)
+		.limit(1)
+		.select("n")
+		.executeTakeFirst();
+	return found !== undefined;
+}
+
 /**
  * Makes every tally of a survey anew by one GROUP BY over its facts. For facts written past the triggers; others are
  * tallied already, with an equal result. Submissions wait until the transaction ends. The caller's scope must see all

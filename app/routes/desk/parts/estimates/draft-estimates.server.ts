@@ -8,7 +8,7 @@ import { estimateByWeights } from "#app/jobs/weighed-estimates.server.ts";
 import { groupBy } from "#app/lib/group-by.ts";
 import { pageOf } from "#app/lib/page-of.ts";
 import { toldCrops } from "#app/lib/told-crops.ts";
-import { listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
+import { isAnyTallied, listFrameStrata, listTallies } from "#app/tally/tally.server.ts";
 import { barScales, chooseRows, sortRows } from "./estimate-rows.ts";
 import { type EstimatesQuery, figureSorts } from "./estimates.schema.ts";
 
@@ -18,6 +18,13 @@ import { type EstimatesQuery, figureSorts } from "./estimates.schema.ts";
  * @returns undefined for a survey that asks in none of the viewer's states.
  */
 export async function readDraftInputs(trx: Trx, viewer: Associate, surveyId: string) {
+	const basis = await readDraftBasis(trx, viewer, surveyId);
+	return basis && { ...basis, tallies: await listTallies(trx, surveyId) };
+}
+export type DraftInputs = NonNullable<Awaited<ReturnType<typeof readDraftInputs>>>;
+
+/** The same without the tallies, which are most of it. */
+async function readDraftBasis(trx: Trx, viewer: Associate, surveyId: string) {
 	const survey = await findSurvey(trx, viewer, surveyId);
 	const definition = survey && (await findSurveyForm(trx, surveyId));
 	if (!definition) return undefined;
@@ -37,10 +44,9 @@ export async function readDraftInputs(trx: Trx, viewer: Associate, surveyId: str
 		areasOfCounty: pathsOfCounties(branches),
 		districtOf: districtsOfCounties(branches),
 		frame: await listFrameStrata(trx, surveyId),
-		tallies: await listTallies(trx, surveyId),
 	};
 }
-export type DraftInputs = NonNullable<Awaited<ReturnType<typeof readDraftInputs>>>;
+type DraftBasis = NonNullable<Awaited<ReturnType<typeof readDraftBasis>>>;
 
 /** The measures that are told of a crop. */
 export function measuresOf(inputs: Pick<DraftInputs, "measures">, cropKey: string): DraftInputs["measures"] {
@@ -51,14 +57,14 @@ export function measuresOf(inputs: Pick<DraftInputs, "measures">, cropKey: strin
 
 /** The table of a survey's draft figures: what is chosen, sorted, one page of it. */
 export async function listDraftEstimates(trx: Trx, viewer: Associate, surveyId: string, asked: EstimatesQuery) {
-	const inputs = await readDraftInputs(trx, viewer, surveyId);
+	const inputs = await readDraftBasis(trx, viewer, surveyId);
 	if (!inputs) return undefined;
 	const { survey, held, areas } = inputs;
 	const crops = [...(inputs.measures.some((measure) => measure.acrossCrops) ? ["all"] : []), ...survey.cropKeys];
 	const query = settle(asked, inputs, crops);
 	const choices = measuresOf(inputs, query.crop);
 	const measures = choices.filter((measure) => query.measure === "all" || measure.key === query.measure);
-	const tallies = inputs.tallies.filter((tally) => tally.cropKey === query.crop);
+	const tallies = await listTallies(trx, surveyId, { cropKey: query.crop });
 	const { estimates, calibrations } = await estimateByWeights(trx, { ...inputs, measures, tallies });
 	const rows = chooseRows(areas, estimates, query);
 	return {
@@ -72,13 +78,13 @@ export async function listDraftEstimates(trx: Trx, viewer: Associate, surveyId: 
 		designKept: calibrations.filter(({ fallback }) => fallback !== null).length,
 		statesNotHeld: survey.statesNotHeld,
 		isClosed: survey.state === "closed",
-		anyAnswer: inputs.tallies.some((tally) => tally.n > 0),
+		anyAnswer: tallies.some((tally) => tally.n > 0) || (await isAnyTallied(trx, surveyId)),
 		...pageOf(sortRows(rows, query), query.page),
 	};
 }
 
 /** What the address asks for and the survey has not falls back to everything. */
-function settle(asked: EstimatesQuery, inputs: DraftInputs, crops: string[]): EstimatesQuery {
+function settle(asked: EstimatesQuery, inputs: DraftBasis, crops: string[]): EstimatesQuery {
 	const crop = crops.includes(asked.crop) ? asked.crop : (crops[0] ?? "all");
 	const keys = measuresOf(inputs, crop).map(({ key }) => key);
 	const measure = keys.includes(asked.measure) ? asked.measure : "all";
