@@ -45,6 +45,24 @@ export async function saveView(
 	return "saved";
 }
 
+/** Gives a view of the person's own another name, which none of the others has. */
+export async function renameView(
+	trx: Trx,
+	viewer: Associate,
+	{ savedViewId, name }: { savedViewId: string; name: string },
+): Promise<"renamed" | "not_found" | "name_taken"> {
+	const views = await listSavedViews(trx, viewer);
+	if (!views.some((view) => view.savedViewId === savedViewId)) return "not_found";
+	if (views.some((view) => view.name === name && view.savedViewId !== savedViewId)) return "name_taken";
+	await trx
+		.updateTable("directory.saved_view")
+		.set({ name })
+		.where("saved_view_id", "=", savedViewId)
+		.where("person_id", "=", viewer.personId)
+		.execute();
+	return "renamed";
+}
+
 /** Takes away a view of the person's own. One that is gone, or somebody else's, changes nothing. */
 export async function dropView(trx: Trx, viewer: Associate, savedViewId: string): Promise<void> {
 	if (!z.guid().safeParse(savedViewId).success) return;

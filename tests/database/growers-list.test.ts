@@ -5,7 +5,7 @@ import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import { OperationQuery, queryParts } from "#app/directory/operation.schema.ts";
 import { listByIds, listMatchingIds, listOperations } from "#app/directory/operation-list.server.ts";
-import { dropView, listSavedViews, saveView } from "#app/directory/saved-views.server.ts";
+import { dropView, listSavedViews, renameView, saveView } from "#app/directory/saved-views.server.ts";
 import { fileHeader, listFileRows } from "#app/directory/grower-file.server.ts";
 import { toCsv } from "#app/publish/data-file.ts";
 import { actOnGrowers } from "#app/routes/desk/parts/growers/bulk-steps.server.ts";
@@ -114,6 +114,23 @@ describe("a saved view", () => {
 		await keep(viewer, "Plums", { q: "quail" });
 		expect(await views(viewer)).toMatchObject([{ name: "Plums", parts: { q: "quail" } }]);
 		expect(queryParts(OperationQuery.parse({}))).toEqual({});
+	});
+
+	test("takes another name, unless another view has it or it is somebody else's", async () => {
+		const [one, other] = [await addPerson(owner, "Namer", ["19"]), await addPerson(owner, "Stranger", ["19"])];
+		await keep(one, "Plums", { crop: "plum" });
+		await keep(one, "Quail", { q: "quail" });
+		const savedViewId = (await views(one)).find(({ name }) => name === "Plums")!.savedViewId;
+		const rename = (viewer: Associate, name: string) =>
+			asDesk(viewer, (trx) => renameView(trx, viewer, { savedViewId, name }));
+		expect(await rename(one, "Quail")).toBe("name_taken");
+		expect(await rename(other, "Mine now")).toBe("not_found");
+		expect(await rename(one, "Plums")).toBe("renamed");
+		expect(await rename(one, "Stone fruit")).toBe("renamed");
+		expect((await views(one)).map(({ name, parts }) => [name, parts])).toEqual([
+			["Quail", { q: "quail" }],
+			["Stone fruit", { crop: "plum" }],
+		]);
 	});
 
 	test("is its person's alone", async () => {

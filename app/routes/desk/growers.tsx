@@ -12,13 +12,13 @@ import { Page } from "#app/components/page.tsx";
 import { listAreas } from "#app/directory/areas.server.ts";
 import { OperationQuery, queryParts } from "#app/directory/operation.schema.ts";
 import { listOperations } from "#app/directory/operation-list.server.ts";
-import { dropView, listSavedViews, saveView } from "#app/directory/saved-views.server.ts";
+import { dropView, listSavedViews, renameView, saveView } from "#app/directory/saved-views.server.ts";
 import { placeText } from "#app/lib/page-by-key.ts";
-import { parseForm } from "#app/lib/parse-form.ts";
+import { parseForm, type Problem } from "#app/lib/parse-form.ts";
 import { ChooseGrowers } from "./parts/growers/choose-growers.tsx";
 import { GrowerFilters } from "./parts/growers/grower-filters.tsx";
 import { GrowerTable } from "./parts/growers/grower-table.tsx";
-import { SavedViews } from "./parts/growers/saved-views.tsx";
+import { SavedViews, viewLabels } from "./parts/growers/saved-views.tsx";
 
 export async function loader({ context, request }: Route.LoaderArgs) {
 	const desk = requireAssociate(context);
@@ -43,12 +43,22 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 	});
 }
 
+const viewName = z.string({ error: "empty" }).trim().min(1, "empty").max(80, "too_long");
 const ViewForm = z.discriminatedUnion("step", [
-	z.object({ step: z.literal("save"), name: z.string({ error: "empty" }).trim().min(1, "empty").max(80, "too_long") }),
+	z.object({ step: z.literal("save"), name: viewName }),
+	z.object({ step: z.literal("rename"), savedViewId: z.guid("choice_wrong"), newName: viewName }),
 	z.object({ step: z.literal("drop"), savedViewId: z.guid() }),
 ]);
 
-/** Keeps the filters of the address as a view, or takes a view away. */
+/** What is to be mended where a view could not be kept or renamed. */
+const refusedViews = {
+	too_many: { field: "name", code: "views_too_many" },
+	name_taken: { field: "newName", code: "view_name_taken" },
+	not_found: { field: "savedViewId", code: "choice_wrong" },
+};
+const toasts = { save: "growers:views.saved", rename: "growers:views.renamed", drop: "growers:views.dropped" };
+
+/** Keeps the filters of the address as a view, renames a view, or takes it away. */
 export async function action({ context, request }: Route.ActionArgs) {
 	const desk = requireAssociate(context);
 	const form = parseForm(ViewForm, await request.formData());
@@ -57,13 +67,18 @@ export async function action({ context, request }: Route.ActionArgs) {
 	const { search, searchParams } = new URL(request.url);
 	const outcome = await desk.transaction(async (trx) => {
 		if (step.step === "drop") return dropView(trx, desk.viewer, step.savedViewId);
+		if (step.step === "rename") {
+			const { savedViewId, newName: name } = step;
+			return renameView(trx, desk.viewer, { savedViewId, name });
+		}
 		const query = OperationQuery.parse(Object.fromEntries(searchParams));
 		return saveView(trx, desk.viewer, { name: step.name, query });
 	});
-	if (outcome === "too_many")
-		return data({ values, problems: [{ field: "name", code: "views_too_many" }] }, { status: 400 });
-	const key = step.step === "save" ? "growers:views.saved" : "growers:views.dropped";
-	context.get(sessionContext).flash("toast", { key });
+	if (outcome && outcome in refusedViews) {
+		const problem: Problem = refusedViews[outcome as keyof typeof refusedViews];
+		return data({ values, problems: [problem] }, { status: 400 });
+	}
+	context.get(sessionContext).flash("toast", { key: toasts[step.step] });
 	return redirect(`${href("/desk/growers")}${search}`, 303);
 }
 
@@ -88,7 +103,7 @@ export default function Growers({ loaderData, actionData }: Route.ComponentProps
 				</>
 			}
 		>
-			<ErrorSummary problems={actionData?.problems} labels={{ name: t("views.name") }} />
+			<ErrorSummary problems={actionData?.problems} labels={viewLabels(t)} />
 			<GrowerFilters {...loaderData} />
 			<SavedViews views={views} parts={parts} values={actionData?.values} problems={actionData?.problems} />
 			<Form method="get" action={href("/desk/growers/chosen")}>

@@ -1,6 +1,8 @@
+import type { TFunction } from "i18next";
 import { useTranslation } from "react-i18next";
 import { Form, href, Link } from "react-router";
 import { Button } from "#app/components/button.tsx";
+import { ChoiceField } from "#app/components/choice-field.tsx";
 import { TextField } from "#app/components/text-field.tsx";
 import type { SavedView } from "#app/directory/saved-views.server.ts";
 import type { FormValues, Problem } from "#app/lib/parse-form.ts";
@@ -13,11 +15,16 @@ type SavedViewsProps = {
 	problems?: Problem[];
 };
 
+export function viewLabels(t: TFunction<"growers">): Record<string, string> {
+	return { name: t("views.name"), savedViewId: t("views.which"), newName: t("views.newName") };
+}
+
 const addressOf = (view: SavedView) => new URLSearchParams(view.parts).toString();
 
 /** The person's own views, each a link, and a form that keeps what is shown now as another. */
 export function SavedViews({ views, parts, values, problems }: SavedViewsProps) {
 	const { t } = useTranslation("growers");
+	const problemOf = (name: string) => problems?.find(({ field }) => field === name);
 	const shown = new URLSearchParams(parts).toString();
 	return (
 		<div className="no-print mb-5">
@@ -40,7 +47,7 @@ export function SavedViews({ views, parts, values, problems }: SavedViewsProps) 
 			)}
 			<details open={problems ? true : undefined}>
 				<summary className="min-h-9 cursor-pointer text-damson underline underline-offset-4">
-					{t("views.manage")}
+					{t(views.length > 0 ? "views.manageAll" : "views.manage")}
 				</summary>
 				<div className="mt-3 border-l-2 border-rule pl-4">
 					<Form method="post" noValidate key={views.length}>
@@ -49,7 +56,7 @@ export function SavedViews({ views, parts, values, problems }: SavedViewsProps) 
 							label={t("views.name")}
 							help={t("views.help")}
 							defaultValue={values ? String(values.name ?? "") : ""}
-							problem={problems?.find(({ field }) => field === "name")}
+							problem={problemOf("name")}
 							maxLength={80}
 						/>
 						<Button kind="secondary" name="step" value="save">
@@ -57,7 +64,31 @@ export function SavedViews({ views, parts, values, problems }: SavedViewsProps) 
 						</Button>
 					</Form>
 					{views.length > 0 && (
-						<ul className="mt-4 grid gap-2">
+						<Form method="post" noValidate key={views.map(({ name }) => name).join("\n")} className="mt-6">
+							<ChoiceField
+								kind="select"
+								name="savedViewId"
+								legend={t("views.which")}
+								options={views.map(({ savedViewId, name }) => ({ value: savedViewId, label: name }))}
+								defaultValue={String(
+									values?.savedViewId ?? views.find((view) => addressOf(view) === shown)?.savedViewId ?? "",
+								)}
+								problem={problemOf("savedViewId")}
+							/>
+							<TextField
+								name="newName"
+								label={t("views.newName")}
+								defaultValue={values ? String(values.newName ?? "") : ""}
+								problem={problemOf("newName")}
+								maxLength={80}
+							/>
+							<Button kind="secondary" name="step" value="rename">
+								{t("views.rename")}
+							</Button>
+						</Form>
+					)}
+					{views.length > 0 && (
+						<ul className="mt-6 grid gap-2">
 							{views.map((view) => (
 								<li key={view.savedViewId}>
 									<Form method="post" className="flex flex-wrap items-center gap-3">
