@@ -1,4 +1,5 @@
 import { askToSendIn, awaitsReceipt, emptyOutbox, listUnsettled, settle } from "#app/collect/outbox.ts";
+import { tellHalfTypedDays } from "#app/lib/half-typed-days.ts";
 import { listenForLeaving } from "./ask-leaving.ts";
 import { startAskPage } from "./ask-page.ts";
 import { openPageStore } from "./leaving-note.ts";
@@ -16,6 +17,7 @@ import type { Held, PhoneStore } from "./store.ts";
  * The script of a grower's pages, which work without it: it keeps what is typed, on the phone and at the server, and says so.
  * The pages are drawn by the server and carry no other script.
  */
+tellHalfTypedDays(document);
 void start();
 // A page that the browser put away and took out again shows what was true then.
 window.addEventListener("pageshow", (event) => event.persisted && location.reload());

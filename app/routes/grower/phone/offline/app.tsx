@@ -4,6 +4,7 @@ import { I18nextProvider, initReactI18next } from "react-i18next";
 import { createBrowserRouter, type DataRouter, RouterProvider } from "react-router";
 import { typedStep } from "#app/collect/outbox.ts";
 import { i18nextSettings } from "#app/i18n/settings.ts";
+import { tellHalfTypedDays } from "#app/lib/half-typed-days.ts";
 import { openPageStore } from "../leaving-note.ts";
 import type { Pack } from "../pack.ts";
 import { here } from "./here.ts";
@@ -15,6 +16,7 @@ import { watchForSignal } from "./watch.ts";
  * The survey's pages where there is no signal: the same looks, drawn by the phone from what it holds. A page that the phone
  * does not hold keeps the words that the server has put there.
  */
+tellHalfTypedDays(document);
 void start();
 
 async function start(): Promise<void> {
