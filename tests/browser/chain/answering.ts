@@ -89,6 +89,15 @@ async function tabTo(page: Page, selector: string): Promise<void> {
 	throw new Error(`the keyboard does not reach ${selector} on ${page.url()}`);
 }
 
+/** A day that may be left empty and that no calendar has is not lost without a word, though its box sends nothing. */
+async function saysThatNoSuchDayIs(page: Page, button: string): Promise<void> {
+	await tabTo(page, "[name=first_harvest]");
+	await page.keyboard.type("02302026");
+	await tabTo(page, button);
+	await page.keyboard.press("Enter");
+	await page.locator("[name=first_harvest][aria-invalid=true]").waitFor();
+}
+
 /** Answers a whole survey without a pointer. */
 export async function answerByKeyboard(page: Page, link: string, grower: TestGrower): Promise<void> {
 	const button = "main form:last-of-type button:not([name])";
@@ -114,6 +123,7 @@ export async function answerByKeyboard(page: Page, link: string, grower: TestGro
 	await type("cause_other", String(100 - grower.freezeShare));
 	await press();
 	await page.locator("[name=first_harvest]").waitFor();
+	await saysThatNoSuchDayIs(page, button);
 	await press();
 	await page.locator("[name=bud_set]").first().waitFor();
 	await tabTo(page, "[name=bud_set]");
