@@ -42,7 +42,12 @@ export function MailCounts({ survey, counts }: MailCountsProps) {
 						numeric: true,
 						cell: ({ waiting }) => format.number(waiting),
 					},
-					{ key: "failed", header: t("mailing.failed"), cell: (row) => <Failures row={row} /> },
+					{
+						key: "failed",
+						header: t("mailing.failed"),
+						numeric: counts.every(({ failures }) => failures.length === 0),
+						cell: (row) => <Failures row={row} />,
+					},
 				]}
 			/>
 			{counts.some(({ failures }) => failures.some(({ why }) => why === "returned")) && (

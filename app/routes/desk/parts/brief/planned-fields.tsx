@@ -28,8 +28,9 @@ export function PlannedFields({ planned, typed, problems, measures, cropKeys }: 
 			measureKey: one.measureKey,
 			cropKey: one.cropKey,
 			level: one.level,
-			smallestN: one.smallestN === null ? "" : format.number(one.smallestN),
-			largestCv: one.largestCv === null ? "" : format.number(one.largestCv * 100, 1),
+			// As they were typed: what stands in a box is read anew.
+			smallestN: String(one.smallestN ?? ""),
+			largestCv: one.largestCv === null ? "" : String(Number((one.largestCv * 100).toFixed(6))),
 		};
 	});
 	return rows.map((row, at) => {
