@@ -1,12 +1,10 @@
 import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { countRows, type Order, pageByKey, type PagePart } from "#app/lib/page-by-key.server.ts";
-import type { Place } from "#app/lib/page-by-key.ts";
-import { searchPattern } from "#app/lib/search-pattern.ts";
+import { countedTo, countRows, pageByParts } from "#app/lib/page-by-key.server.ts";
+import { callParts, isPromised, isSoughtBy, promisedTo, waitedFor } from "./call-parts.server.ts";
 import type { CallQuery, ContactOutcome } from "./contacts.schema.ts";
 import type { Disposition } from "./frame-list.server.ts";
-import { isWaitedFor } from "./waited-for.server.ts";
 
 const pageSize = 50;
 
@@ -60,36 +58,6 @@ export type CallRow = {
 	share: number;
 };
 
-const today = sql`(now() at time zone z.time_zone)::date`;
-const isDue = sql<boolean>`coalesce(c.next_on <= ${today}, false)`;
-const shown = {
-	all: sql`true`,
-	to_call: sql`(c.next_on is null or c.next_on <= ${today})`,
-	due: sql`c.next_on <= ${today}`,
-	later: sql`c.next_on > ${today}`,
-};
-
-/**
- * The frame with everybody's newest contact, looked up one by one: the planner cannot know how many rows the policies let
- * through, and joined whole it once chose to go through all contacts for each operation. With 50,000 operations that took
- * 26 minutes.
- */
-const waitedFor = (viewer: Associate, surveyId: string) => sql`collect.frame_operation f
-	join directory.operation o on o.operation_id = f.operation_id
-	join directory.state z on z.state_fips = f.state_fips
-	left join lateral (select n.outcome, n.made_at, n.note, n.next_on, n.next_time from collect.contact n
-		where n.operation_id = f.operation_id and (n.survey_id is null or n.survey_id = ${surveyId})
-		order by n.made_at desc, n.contact_id limit 1) c on true
-	where f.survey_id = ${surveyId} and f.state_fips = any (${viewer.stateFips}) and ${isWaitedFor}`;
-
-/** By name of the operation or its contact, or by the number on its paper form. */
-function matching({ q, show, state }: CallQuery) {
-	const pattern = searchPattern(q);
-	const named = sql`(o.name ~* ${pattern} or o.contact_name ~* ${pattern}
-		or left(f.operation_id::text, 8) = ${q.toLowerCase()})`;
-	return sql`${shown[show]} and ${q === "" ? sql`true` : named} and ${state === "all" ? sql`true` : sql`f.state_fips = ${state}`}`;
-}
-
 /**
  * A page of the calls to make: what was promised for today first, then where an answer is worth most; within one county and
  * stratum larger orchards first. Who has no number, or was tried today, comes after the others. Ties are ordered by id.
@@ -101,56 +69,48 @@ export async function listCalls(
 	query: CallQuery,
 	cells: readonly WorthCell[],
 ) {
-	const frame = sql`${waitedFor(viewer, surveyId)} and ${matching(query)}`;
-	const count = await countRows(trx, (most) => sql`(select from ${frame} limit ${most})`);
-	const read = async ({ beyond, inOrder, place, limit }: PagePart) => {
-		const { rows } = await sql<CallRow & { place: Place }>`
-		with waited as materialized (select f.operation_id, f.county_fips, f.stratum_key, f.disposition, o.name, o.contact_name,
-				o.phone, z.postal, z.time_zone, c.outcome, c.made_at, c.note, c.next_on, c.next_time, ${isDue} as due,
-				coalesce((c.made_at at time zone z.time_zone)::date = ${today}, false) as tried_today,
-				coalesce((select sum(t.bearing_trees) from collect.frame_crop t where t.survey_id = f.survey_id
-					and t.operation_id = f.operation_id), 0)::float8 as bearing_trees
-			from ${frame}),
-		cell as (select * from jsonb_to_recordset(${JSON.stringify(cells)}::jsonb) as w ("countyFips" text,
-			"stratumKey" text, worth float8, share float8, answered int, "frameSize" int))
-		select w.operation_id as "operationId", w.name, w.contact_name as "contactName", w.phone, k.name as "countyName",
-			w.postal as "statePostal", w.time_zone as "timeZone", w.disposition,
-			w.bearing_trees as "bearingTrees", w.outcome, w.made_at as "madeAt", w.note, w.next_on as "nextOn",
-			to_char(w.next_time, 'HH24:MI') as "nextTime", w.due, coalesce(e.answered, 0) as "answeredHere",
-			coalesce(e."frameSize", 0) as "askedHere", coalesce(e.share, 0) as share, ${place} as place
-		from waited w join directory.county k on k.county_fips = w.county_fips
-			left join cell e on e."countyFips" = w.county_fips and e."stratumKey" = w.stratum_key
-		where ${beyond} order by ${inOrder} limit ${limit}`.execute(trx);
-		return rows;
-	};
-	return { ...(await pageByKey(byWorth, query, pageSize, read)), ...count };
+	const { few, ...count } = await countCalls(trx, viewer, surveyId, query);
+	const parts = callParts(trx, viewer, { surveyId, query, cells, few });
+	const page = await pageByParts(parts, query, pageSize);
+	const cellOf = new Map(cells.map((cell) => [`${cell.countyFips} ${cell.stratumKey}`, cell]));
+	const rows = page.rows.map(({ countyFips, stratumKey, ...row }): CallRow => {
+		const here = cellOf.get(`${countyFips} ${stratumKey}`);
+		return { ...row, answeredHere: here?.answered ?? 0, askedHere: here?.frameSize ?? 0, share: here?.share ?? 0 };
+	});
+	return { ...page, rows, ...count };
 }
 
-/** Promised ones by their time, those of no certain time at the end of their day. */
-const promisedAt = sql`coalesce(extract(epoch from case when w.due then w.next_on + coalesce(w.next_time, '24:00') end)::float8,
-	'infinity')`;
-const byWorth: Order = {
-	keys: [
-		{ by: promisedAt, kind: "float8" },
-		{ by: sql`(coalesce(w.phone, '') = '')`, kind: "boolean" },
-		{ by: sql.ref("w.tried_today"), kind: "boolean" },
-		{ by: sql`(- coalesce(e.worth, 0))`, kind: "float8" },
-		{ by: sql`(- w.bearing_trees)`, kind: "float8" },
-		{ by: sql.ref("w.operation_id"), kind: "uuid" },
-	],
-	direction: "asc",
-};
+/** How many calls match, and who is sought where that is few: read for the count, they need not be looked for again. */
+async function countCalls(trx: Trx, viewer: Associate, surveyId: string, query: CallQuery) {
+	const frame = sql`${waitedFor(viewer, surveyId)} and ${isSoughtBy(query)}`;
+	if (query.show === "due" || query.show === "later") {
+		const { show } = query;
+		const count = await countRows(
+			trx,
+			(most) => sql`(select from (${promisedTo[show](surveyId)}) p cross join lateral (
+				select from ${frame} and f.operation_id = p.operation_id and ${isPromised[show]}) w limit ${most})`,
+		);
+		return { ...count, few: null };
+	}
+	const shown = query.show === "to_call" ? sql`(c.next_on is null or ${isPromised.due})` : sql`true`;
+	if (query.q === "")
+		return { ...(await countRows(trx, (most) => sql`(select from ${frame} and ${shown} limit ${most})`)), few: null };
+	const { rows } = await sql<{ id: string }>`
+		select f.operation_id as id from ${frame} and ${shown} limit ${countedTo + 1}`.execute(trx);
+	const moreThanTotal = rows.length > countedTo;
+	return {
+		total: Math.min(rows.length, countedTo),
+		moreThanTotal,
+		few: moreThanTotal ? null : rows.map(({ id }) => id),
+	};
+}
 
-/**
- * How many calls were promised for today, or for a day that has gone by. Those of whom any contact promised it are looked at one
- * by one, not the whole frame; no state's clock is more than a day ahead.
- */
+/** How many calls were promised for today, or for a day that has gone by, looked at one by one and not in the whole frame. */
 export async function countDueCalls(trx: Trx, viewer: Associate, surveyId: string): Promise<number> {
 	const { rows } = await sql<{ due: number }>`
-		with promised as materialized (select distinct n.operation_id from collect.contact n
-			where n.next_on <= (now() at time zone 'UTC')::date + 1 and (n.survey_id is null or n.survey_id = ${surveyId}))
+		with promised as materialized (${promisedTo.due(surveyId)})
 		select count(*)::int as due from promised p cross join lateral (
-			select from ${waitedFor(viewer, surveyId)} and f.operation_id = p.operation_id and ${shown.due} limit 1) due`.execute(
+			select from ${waitedFor(viewer, surveyId)} and f.operation_id = p.operation_id and ${isPromised.due} limit 1) due`.execute(
 		trx,
 	);
 	return rows[0]!.due;

@@ -3,7 +3,7 @@ import { z } from "zod";
 import { type Beside, type PageByKey, type Place, placeText } from "./page-by-key.ts";
 
 /** Beyond this a list that must be gone through to be counted is told as "more than". */
-const countedTo = 1_000;
+export const countedTo = 1_000;
 /** `moreThanTotal` where the list is longer than `total`, which is as far as it was counted. */
 export type Counted = { total: number; moreThanTotal: boolean };
 
@@ -70,24 +70,70 @@ const otherWay = { asc: "desc", desc: "asc" } as const;
  * A page of a list that begins beside a row and not at a number: rows that come or go on other pages move none, so that who
  * goes from page to page sees no row twice and misses none. Where the wanted rows are gone, the nearest page is shown.
  */
-export async function pageByKey<Row extends { place: Place }>(
+export function pageByKey<Row extends { place: Place }>(
 	order: Order,
-	{ after, before }: Beside,
+	beside: Beside,
 	size: number,
 	read: (part: PagePart) => Promise<Row[]>,
 ): Promise<PageByKey<Omit<Row, "place">>> {
 	const back = { ...order, direction: otherWay[order.direction] };
-	const [end, start] = [placeIn(order, before), placeIn(order, after)];
+	return pageBeside(
+		(place) => placeIn(order, place),
+		beside,
+		size,
+		(way, from, limit) => read(partOf(way === "on" ? order : back, from, limit)),
+	);
+}
+
+/** Rows of a list that are in an order of their own. */
+export type ListPart<Row> = { order: Order; read: (part: PagePart) => Promise<Row[]> };
+
+/**
+ * A page as of `pageByKey`, of a list whose parts follow one another, each read by a query that suits it. The next part is
+ * asked only while rows are missing. A place begins with the number of its part.
+ */
+export function pageByParts<Row extends { place: Place }>(
+	parts: readonly ListPart<Row>[],
+	beside: Beside,
+	size: number,
+): Promise<PageByKey<Omit<Row, "place">>> {
+	const numbered = [...parts.entries()];
+	const known = (place: Place | undefined) => {
+		const part = parts[Number(place?.[0])];
+		return part && placeIn(part.order, place?.slice(1)) ? place! : null;
+	};
+	return pageBeside(known, beside, size, async (way, from, limit) => {
+		const first = from && Number(from[0]);
+		const inTurn = way === "on" ? numbered : numbered.toReversed();
+		const rows: Row[] = [];
+		for (const [i, { order, read }] of inTurn.slice(inTurn.findIndex(([of]) => of === (first ?? of)))) {
+			if (rows.length >= limit) break;
+			const direction = way === "on" ? order.direction : otherWay[order.direction];
+			const start = i === first ? from!.slice(1) : null;
+			const found = await read(partOf({ ...order, direction }, start, limit - rows.length));
+			rows.push(...found.map((row) => ({ ...row, place: [i, ...row.place] })));
+		}
+		return rows;
+	});
+}
+
+async function pageBeside<Row extends { place: Place }>(
+	known: (place: Place | undefined) => Place | null,
+	{ after, before }: Beside,
+	size: number,
+	read: (way: "on" | "back", from: Place | null, limit: number) => Promise<Row[]>,
+): Promise<PageByKey<Omit<Row, "place">>> {
+	const [end, start] = [known(before), known(after)];
 	if (end) {
-		const found = await read(partOf(back, end, size + 1));
+		const found = await read("back", end, size + 1);
 		if (found.length > 0)
 			return pageOf(found.slice(0, size).toReversed(), { before: found.length > size, after: true });
 	}
 	const from = end ? null : start;
-	const found = await read(partOf(order, from, size + 1));
+	const found = await read("on", from, size + 1);
 	if (found.length > 0 || !from)
 		return pageOf(found.slice(0, size), { before: from !== null, after: found.length > size });
-	const last = await read(partOf(back, null, size + 1));
+	const last = await read("back", null, size + 1);
 	return pageOf(last.slice(0, size).toReversed(), { before: last.length > size, after: false });
 }
 
