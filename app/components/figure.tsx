@@ -29,10 +29,11 @@ export function Figure(props: FigureProps) {
 				? t("figure.likely", format.ends(lower, upper, measure))
 				: format.range(lower, upper, measure)
 			: "";
+	const numeral = measure.unit === "day" ? "text-day" : "text-numeral";
 	const quiet = classes("block text-quiet", headline ? "mt-1 text-base" : "text-xs");
 	return (
 		<span className={headline ? "block" : undefined}>
-			<strong className={headline ? "block text-numeral tracking-tight" : "font-bold"}>
+			<strong className={headline ? classes("block tracking-tight", numeral) : "font-bold"}>
 				{format.figure(value, measure)}
 			</strong>
 			{bounds && (

@@ -90,7 +90,10 @@ export default function NetworkReport({ loaderData, actionData }: Route.Componen
 			)}
 			{state !== "published" && <StillTyped report={report} />}
 			{state === "submitted" && submittedAt && (
-				<p className="mb-4">{t("report_review.submitted", { moment: format.moment(submittedAt) })}</p>
+				<div className="mb-4 max-w-prose">
+					<p>{t("report_review.submitted", { moment: format.moment(submittedAt) })}</p>
+					<p>{t("report_review.bothLanguages")}</p>
+				</div>
 			)}
 			{state === "scheduled" && publishAt && (
 				<Notice tone="info">{t("report:schedule.waits", { moment: format.moment(publishAt) })}</Notice>

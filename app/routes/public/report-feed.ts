@@ -1,5 +1,5 @@
 import type { Route } from "./+types/report-feed";
-import { isLanguage } from "#app/i18n/language.ts";
+import { isLanguage, wordsIn } from "#app/i18n/language.ts";
 import { getInstance, getLanguage } from "#app/i18n/middleware.server.ts";
 import { env } from "#app/lib/env.server.ts";
 import { textWords } from "#app/lib/figure-words.ts";
@@ -22,10 +22,13 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 		reports.map(async (report) => {
 			const address = `${base}/reports/${report.slug}`;
 			const files = await listReportFiles(report.reportId);
+			const summary = textWords(report.summary[language], t, format);
 			return {
 				address,
 				title: textWords(report.title[language], t, format),
-				summary: textWords(report.summary[language], t, format),
+				summary: report.correction
+					? t("report:feed.corrected", { what: wordsIn(report.correction, language), summary })
+					: summary,
 				author: report.authorName,
 				published: report.firstPublishedAt,
 				updated: report.publishedAt,
