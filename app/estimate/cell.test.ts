@@ -78,6 +78,9 @@ describe("a cell's estimate", () => {
 		const answers: [number, number][] = [[0, 100], [0, 300], [0, 50]]; // prettier-ignore
 		const cell = estimateCell({ kind: "ratio" }, strata, [tally("55.small", answers)]);
 		expect(cell).toMatchObject({ value: 0, standardError: 0, lower: null, upper: null, steadiness: "care" });
+		const alike: [number, number][] = [[25, 100], [75, 300], [12.5, 50]]; // prettier-ignore
+		const share = estimateCell({ kind: "proportion" }, strata, [tally("55.small", alike)]);
+		expect(share).toMatchObject({ value: 0.25, standardError: 0, lower: null, upper: null, steadiness: "care" });
 		const whole = estimateCell({ kind: "ratio" }, strata, [tally("55.large", answers)]);
 		expect(whole).toMatchObject({ lower: 0, upper: 0 });
 	});

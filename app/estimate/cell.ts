@@ -116,9 +116,12 @@ function intervalOf(
 	figure: Figure,
 	{ freedom, respondents }: Pick<CellParts, "freedom" | "respondents">,
 ): Interval | null {
-	if (kind === "proportion") return proportionInterval(figure, freedom, respondents);
 	// Answers that all agree do not prove that the others agree too: ends at the value itself would say so.
-	return figure.standardError === 0 ? null : normalInterval(figure);
+	const agreed = figure.standardError === 0;
+	// Where everybody or nobody has it, the exact interval still tells how far others may differ.
+	if (kind === "proportion" && (!agreed || figure.value === 0 || figure.value === 1))
+		return proportionInterval(figure, freedom, respondents);
+	return agreed ? null : normalInterval(figure);
 }
 
 function clip(
