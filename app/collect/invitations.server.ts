@@ -2,7 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
-import { conditionsOfAll, lastWave, queueWave } from "./mail-waves.server.ts";
+import { conditionsOfAll, conditionsOfEach, lastWave, queueWave } from "./mail-waves.server.ts";
 import { findSurvey } from "./surveys.server.ts";
 
 /**
@@ -11,7 +11,7 @@ import { findSurvey } from "./surveys.server.ts";
  * @param only of these operations alone.
  */
 export async function countMailings(trx: Trx, viewer: Associate, surveyId: string, only?: string[]) {
-	const { hasSent, isAwaited, isInvited, invitationWentOut } = conditionsOfAll(surveyId);
+	const { hasSent, isAwaited, isInvited, invitationWentOut, hasNoAddress } = conditionsOfAll(surveyId);
 	const told = trx
 		.selectFrom("collect.frame_operation as f")
 		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
@@ -22,7 +22,7 @@ export async function countMailings(trx: Trx, viewer: Associate, surveyId: strin
 			isAwaited.as("is_awaited"),
 			isInvited.as("is_invited"),
 			invitationWentOut.as("went_out"),
-			sql<boolean>`(coalesce(o.email, '') = '' and o.left_at is null and not ${hasSent})`.as("without_address"),
+			sql<boolean>`(${hasNoAddress} and not ${hasSent})`.as("without_address"),
 		])
 		// Keeps each of them from being asked as often as it is counted by.
 		.offset(0);
@@ -36,6 +36,26 @@ export async function countMailings(trx: Trx, viewer: Associate, surveyId: strin
 		])
 		.executeTakeFirstOrThrow();
 	return { ...row, reminderWave: (await lastWave(trx, surveyId, "reminder")) + 1 };
+}
+
+/** Of the same counts those that have somebody do something today, without going through who was invited and has answered. */
+export async function countToWrite(trx: Trx, viewer: Associate, surveyId: string) {
+	const inFrame = trx
+		.selectFrom("collect.frame_operation as f")
+		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
+		.where("f.survey_id", "=", surveyId)
+		.where("f.state_fips", "in", viewer.stateFips)
+		.select(sql<number>`count(*)`.as("n"));
+	const { isAwaited, isInvited, hasNoAddress, hasSent } = conditionsOfEach;
+	const { n: toInvite } = await inFrame
+		.where(isAwaited)
+		.where(sql<boolean>`not ${isInvited}`)
+		.executeTakeFirstOrThrow();
+	const { n: withoutAddress } = await inFrame
+		.where(hasNoAddress)
+		.where(sql<boolean>`not ${hasSent}`)
+		.executeTakeFirstOrThrow();
+	return { toInvite, withoutAddress };
 }
 
 /** Queues an invitation to everyone in the viewer's states who is awaited and has none that went out or still waits. */

@@ -32,6 +32,11 @@ const hasMail = (which: RawBuilder<boolean>) => sql<boolean>`exists (select from
 	where m.survey_id = f.survey_id and m.operation_id = f.operation_id and ${which})`;
 const [invited, wasInvited] = [hasMail(invites), hasMail(wentOut)];
 
+/** Cannot be written to by mail, and is still in the list. */
+const hasNoAddress = sql<boolean>`(coalesce(o.email, '') = '' and o.left_at is null)`;
+
+export const conditionsOfEach = { hasSent: answered, isAwaited: awaited, isInvited: invited, hasNoAddress };
+
 /**
  * The same conditions where a whole frame is gone through to be counted: answers and mails of the survey are gathered once and
  * not looked up for each operation (50,000 operations: 8,000 pages of the database instead of 870,000).
@@ -42,7 +47,7 @@ export function conditionsOfAll(surveyId: string) {
 	const amongMails = (which: RawBuilder<boolean>) => sql<boolean>`(f.operation_id in (select m.operation_id
 		from collect.mailing m where m.survey_id = ${surveyId} and ${which}))`;
 	const [isInvited, invitationWentOut] = [amongMails(invites), amongMails(wentOut)];
-	return { hasSent, isAwaited: awaitedUnless(hasSent), isInvited, invitationWentOut };
+	return { hasSent, isAwaited: awaitedUnless(hasSent), isInvited, invitationWentOut, hasNoAddress };
 }
 
 const recipients: Record<WaveKind, ReturnType<typeof sql<boolean>>> = {

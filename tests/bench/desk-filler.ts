@@ -25,6 +25,8 @@ export async function fillDesk(owner: Client, size: number): Promise<FilledDesk>
 		[personId, states],
 	);
 	await owner.query(operations, [size, states]);
+	// As a large import does.
+	await owner.query("select directory.know_operations()");
 	const [last, surveyId] = (
 		await owner.query<{ survey_id: string }>(surveys, [JSON.stringify(afterHarvest), personId])
 	).rows.map(({ survey_id }) => survey_id) as [string, string];

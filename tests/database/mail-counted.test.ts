@@ -1,5 +1,5 @@
 import { expect, test } from "vitest";
-import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
+import { countMailings, countToWrite, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
@@ -37,7 +37,9 @@ const surveyId = await asDesk(both, async (trx) => {
 async function expectAgreed() {
 	for (const viewer of [iowa, wisconsin, both]) {
 		const counts = await asDesk(viewer, (trx) => countMailings(trx, viewer, surveyId));
-		const { reminderWave, toInvite, toRemind, invited } = counts;
+		const { reminderWave, toInvite, toRemind, invited, withoutAddress } = counts;
+		const today = await asDesk(viewer, (trx) => countToWrite(trx, viewer, surveyId));
+		expect(today).toEqual({ toInvite, withoutAddress });
 		expect(toInvite).toBe(await wouldQueue(viewer, sendInvitations));
 		expect(toRemind).toBe(await wouldQueue(viewer, (trx, who, id) => sendReminders(trx, who, id, reminderWave)));
 		const { rows } = await owner.query(

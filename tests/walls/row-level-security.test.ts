@@ -106,6 +106,7 @@ const ownersRights: Record<string, string> = {
 	"collect.tell_findings": "a trigger, which answers nothing",
 	"collect.tell_words": "a trigger, which answers nothing",
 	"collect.tell_words_of_survey": "a trigger, which answers nothing",
+	"directory.know_operations": "has the planner look at the list anew, and answers nothing",
 };
 
 /** Tables of the two schemas that hold no row of a grower. */

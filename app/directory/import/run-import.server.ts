@@ -47,6 +47,8 @@ export async function writeImport(
 		if (!(await changeOperations(trx, importId, part))) return "list_changed";
 		await tell((done += part.length), total);
 	}
+	// The list is opened next, and the planner would take it for as small as it was.
+	if (made.length > 1_000) await sql`select directory.know_operations()`.execute(trx);
 	return { made: made.length, changed: changed.length };
 }
 

@@ -6,7 +6,7 @@ import { countDueCalls } from "#app/collect/calls.server.ts";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { CountQuery } from "#app/collect/desk-lists.schema.ts";
-import { countMailings } from "#app/collect/invitations.server.ts";
+import { countToWrite } from "#app/collect/invitations.server.ts";
 import { countLateWaiting } from "#app/collect/late-answers.server.ts";
 import { listCountyCounts } from "#app/collect/response-counts.server.ts";
 import { listSurveys, type Survey } from "#app/collect/surveys.server.ts";
@@ -35,7 +35,7 @@ export async function loader({ context, request }: Route.LoaderArgs) {
 		const soon = Date.now() + closingSoonDays * 86_400_000;
 		const open = [];
 		for (const survey of out) {
-			const mailings = await countMailings(trx, viewer, survey.surveyId);
+			const mailings = await countToWrite(trx, viewer, survey.surveyId);
 			const dueCalls = await countDueCalls(trx, viewer, survey.surveyId);
 			open.push({ ...survey, mailings, dueCalls, closesSoon: survey.closesAt.getTime() <= soon });
 		}
