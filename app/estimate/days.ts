@@ -1,6 +1,7 @@
 import { type CellParts, type Estimate, joinsAmong } from "#app/estimate/cell.ts";
 import { proportionInterval } from "#app/estimate/interval.ts";
 import {
+	countUpTo,
 	type DayTally,
 	histogramStrata,
 	quantileEstimate,
@@ -33,7 +34,7 @@ export function estimateDays(
 	const rows = tallies.filter(({ days }) => days?.some(({ n }) => n > 0));
 	const strata = histogramStrata(frame, rows);
 	const present = strata.filter(({ counts }) => counts.length > 0);
-	const respondents = present.flatMap(({ counts }) => counts).reduce((sum, { n }) => sum + n, 0);
+	const respondents = present.reduce((sum, { counts }) => sum + countUpTo(counts, Infinity), 0);
 	return dayOf(
 		{
 			respondents,

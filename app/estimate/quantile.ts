@@ -30,7 +30,8 @@ export function histogramStrata(frame: StrataFrame, rows: readonly DayTally[]): 
 }
 
 /** The rows' counts as one histogram: a state's would be gone through a county at a time, and for every quantile anew. */
-function addedUp(rows: readonly DayTally[]): { value: number; n: number }[] {
+function addedUp(rows: readonly DayTally[]): readonly { value: number; n: number }[] {
+	if (rows.length <= 1) return rows[0]?.days ?? [];
 	const counts = new Map<number, number>();
 	for (const { days } of rows) for (const { value, n } of days ?? []) counts.set(value, (counts.get(value) ?? 0) + n);
 	return [...counts].map(([value, n]) => ({ value, n }));
@@ -136,9 +137,9 @@ function distribution(strata: readonly WeightedCounts[]): Step[] {
 		for (const { value, n } of counts) if (n > 0) weights.set(value, (weights.get(value) ?? 0) + weight * n);
 	}
 	let cumulative = 0;
-	return [...weights]
-		.toSorted(([a], [b]) => a - b)
-		.map(([value, weight]) => ({ value, cumulative: (cumulative += weight) }));
+	return [...weights.keys()]
+		.toSorted((a, b) => a - b)
+		.map((value) => ({ value, cumulative: (cumulative += weights.get(value)!) }));
 }
 
 function valueAt(steps: readonly Step[], p: number, rule: QuantileRule): number {
@@ -163,13 +164,16 @@ function endAt(steps: readonly Step[], share: number, rule: QuantileRule): numbe
  */
 export function sharesAtOrBelow(strata: readonly HistogramStratum[], bound: number): DomainStratum[] {
 	return strata.map(({ counts, ...stratum }) => {
-		const n = countIn(counts);
-		const below = countIn(counts.filter(({ value }) => value <= bound));
+		const n = countUpTo(counts, Infinity);
+		const below = countUpTo(counts, bound);
 		const mYY = n === 0 ? 0 : (below * (n - below)) / n;
 		return { ...stratum, domain: { n, sumY: below, sumX: n, mYY, mXX: 0, mXY: 0 } };
 	});
 }
 
-function countIn(counts: HistogramStratum["counts"]): number {
-	return counts.reduce((sum, { n }) => sum + n, 0);
+/** Answers at or below a bound. */
+export function countUpTo(counts: WeightedCounts["counts"], bound: number): number {
+	let sum = 0;
+	for (const { value, n } of counts) if (value <= bound) sum += n;
+	return sum;
 }
