@@ -1,7 +1,14 @@
-import { sql } from "kysely";
+import { type RawBuilder, sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { type Counted, countRows, type Order, pageByKey } from "#app/lib/page-by-key.server.ts";
+import {
+	type Counted,
+	countRows,
+	type Order,
+	pageByParts,
+	type PagePart,
+	type SortKey,
+} from "#app/lib/page-by-key.server.ts";
 import { searchPattern } from "#app/lib/search-pattern.ts";
 import type { FrameQuery } from "./desk-lists.schema.ts";
 import { listMails, type Mail } from "./mail-list.server.ts";
@@ -50,9 +57,19 @@ export async function listFrame(trx: Trx, viewer: Associate, surveyId: string, q
 	const matching = matchingFrame(trx, viewer, surveyId, query);
 	const count = await countFrame(trx, viewer, surveyId, query);
 	const size = query.all ? largestPage : pageSize;
-	const page = await pageByKey(orderOf(query), query, size, ({ beyond, inOrder, place, limit }) =>
-		matching.where(beyond).select(frameColumns).select(place.as("place")).orderBy(inOrder).limit(limit).execute(),
-	);
+	const parts = partsOf(query).map(({ order, those }) => ({
+		order,
+		read: ({ beyond, inOrder, place, limit }: PagePart) =>
+			matching
+				.where(those)
+				.where(beyond)
+				.select(frameColumns)
+				.select(place.as("place"))
+				.orderBy(inOrder)
+				.limit(limit)
+				.execute(),
+	}));
+	const page = await pageByParts(parts, query, size);
 	// Mails are looked up for the rows shown: joined above, they would be for every grower of the frame.
 	const mails = await listMails(
 		trx,
@@ -62,19 +79,29 @@ export async function listFrame(trx: Trx, viewer: Associate, surveyId: string, q
 	return { ...page, rows: page.rows.map((row) => toRow(row, mails.get(row.operationId))), ...count };
 }
 
-/** A frame whole is told exactly, since that is kept; part of a large one as far as it is counted. */
+/** What is kept is told exactly: a frame whole, and who has answered or not; other parts as far as they are counted. */
 async function countFrame(trx: Trx, viewer: Associate, surveyId: string, query: FrameQuery): Promise<Counted> {
+	const { q, show } = query;
+	if (q === "" && (show === "all" || show === "answered" || show === "not_answered")) {
+		const { asked, answered } = await readKeptCounts(trx, viewer, surveyId);
+		const total = { all: asked, answered, not_answered: asked - answered }[show];
+		return { total, moreThanTotal: false };
+	}
 	const matching = matchingFrame(trx, viewer, surveyId, query);
-	const count = await countRows(trx, (most) => matching.select(sql.lit(1).as("one")).limit(most));
-	if (!count.moreThanTotal || query.q !== "" || query.show !== "all") return count;
-	const kept = await trx
-		.selectFrom("collect.frame_count")
-		.where("survey_id", "=", surveyId)
-		.where("crop_key", "=", "all")
-		.where("state_fips", "in", viewer.stateFips)
-		.select(sql<number>`sum(operations)::int`.as("total"))
-		.executeTakeFirstOrThrow();
-	return { total: kept.total, moreThanTotal: false };
+	return countRows(trx, (most) => matching.select(sql.lit(1).as("one")).limit(most));
+}
+
+async function readKeptCounts(trx: Trx, viewer: Associate, surveyId: string) {
+	const sum = (table: "collect.frame_count" | "collect.answered_count") =>
+		trx
+			.selectFrom(table)
+			.where("survey_id", "=", surveyId)
+			.where("crop_key", "=", "all")
+			.where("state_fips", "in", viewer.stateFips)
+			.select(sql<number>`coalesce(sum(operations), 0)::int`.as("n"));
+	const { rows } = await sql<{ asked: number; answered: number }>`
+		select (${sum("collect.frame_count")}) as asked, (${sum("collect.answered_count")}) as answered`.execute(trx);
+	return rows[0]!;
 }
 
 const frameColumns = [
@@ -91,23 +118,43 @@ const frameColumns = [
 	"r.withdrawn_at as withdrawnAt",
 ] as const;
 
-function orderOf({ sort, direction }: FrameQuery): Order {
-	const first = {
-		name: { by: sql.ref("o.name"), kind: "text" },
-		county: { by: sql.ref("c.name"), kind: "text" },
-		// From done to out of reach, as one works through the list.
-		disposition: {
-			by: sql`array_position(array['complete', 'partial', 'reached', 'not_reached', 'undeliverable', 'refused',
-				'not_eligible'], f.disposition)`,
-			kind: "int8",
-		},
+/** From done to out of reach, as one works through the list. */
+const dispositions = [
+	"complete",
+	"partial",
+	"reached",
+	"not_reached",
+	"undeliverable",
+	"refused",
+	"not_eligible",
+] as const satisfies Disposition[];
+const byId = { by: sql.ref("f.operation_id"), kind: "uuid" } as const;
+const everybody = sql<boolean>`true`;
+
+/**
+ * The list as parts one after another, each read off an index: put in order whole by when they answered, or by what became of
+ * them, 50,000 took 80 ms a page.
+ */
+function partsOf({ sort, direction }: FrameQuery): { order: Order; those: RawBuilder<boolean> }[] {
+	const inOrder = (...keys: SortKey[]) => ({ keys, direction });
+	if (sort === "answered") {
+		const answered = [
+			{ by: sql.ref("r.submitted_at"), kind: "instant" },
+			{ by: sql.ref("r.operation_id"), kind: "uuid" },
+		] as const;
 		// Who has not answered comes last either way.
-		answered: {
-			by: sql`coalesce(extract(epoch from r.submitted_at)::float8, ${direction === "asc" ? "infinity" : "-infinity"})`,
-			kind: "float8",
-		},
-	} as const;
-	return { keys: [first[sort], { by: sql.ref("f.operation_id"), kind: "uuid" }], direction };
+		return [
+			{ order: inOrder(...answered), those: sql`r.submitted_at is not null` },
+			{ order: inOrder(byId), those: sql`r.submitted_at is null` },
+		];
+	}
+	if (sort === "disposition")
+		return (direction === "asc" ? dispositions : dispositions.toReversed()).map((disposition) => ({
+			order: inOrder(byId),
+			those: sql`f.disposition = ${disposition}`,
+		}));
+	const name = sql.ref(sort === "name" ? "o.name" : "c.name");
+	return [{ order: inOrder({ by: name, kind: "text" }, byId), those: everybody }];
 }
 
 function matchingFrame(trx: Trx, viewer: Associate, surveyId: string, { q, show }: FrameQuery) {
@@ -118,11 +165,15 @@ function matchingFrame(trx: Trx, viewer: Associate, surveyId: string, { q, show 
 		)
 		.$if(show === "answered", (rows) => rows.where("r.submitted_at", "is not", null))
 		.$if(show === "not_answered" || show === "no_address", (rows) => rows.where("r.submitted_at", "is", null))
-		.$if(show === "no_address", (rows) => rows.where(sql<boolean>`coalesce(o.email, '') = '' and o.left_at is null`))
+		.$if(show === "no_address", (rows) =>
+			rows.where(sql<boolean>`(o.email is null or o.email = '') and o.left_at is null`),
+		)
 		.$if(show === "mail_returned", (rows) =>
-			rows.where(sql<boolean>`(select m.failure from collect.mailing m
-			where m.survey_id = f.survey_id and m.operation_id = f.operation_id
-			order by m.queued_at desc, m.mailing_id desc limit 1) = 'returned'`),
+			rows.where(sql<boolean>`f.operation_id = any (array(select m.operation_id from collect.mailing m
+					where m.survey_id = ${surveyId} and m.failure = 'returned'))
+				and (select m.failure from collect.mailing m
+					where m.survey_id = f.survey_id and m.operation_id = f.operation_id
+					order by m.queued_at desc, m.mailing_id desc limit 1) = 'returned'`),
 		);
 }
 

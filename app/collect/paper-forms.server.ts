@@ -29,7 +29,7 @@ export async function listPaperForms(
 		.$if(operationId !== undefined, (rows) => rows.where("f.operation_id", "=", operationId!))
 		.$if(operationId === undefined, (rows) => rows.where(isWaitedFor))
 		.$if(operationId === undefined && query.show === "no_address", (rows) =>
-			rows.where(sql<boolean>`coalesce(o.email, '') = ''`),
+			rows.where(sql<boolean>`(o.email is null or o.email = '')`),
 		);
 	const inArea = operationId === undefined && query.area !== "all" ? liesIn(query.area) : null;
 	const count = await countRows(trx, (most) =>
