@@ -1,9 +1,11 @@
 import { useTranslation } from "react-i18next";
 import { useAreaName } from "#app/components/map/area-name.ts";
+import { rangeOf } from "#app/lib/likely-range.ts";
 import { wordsIn } from "#app/i18n/language.ts";
 import type { ResolvedChart } from "#app/publish/resolved-chart.server.ts";
 import { CauseBars } from "./cause-bars.tsx";
 import { paleFill, partFill } from "./chart-fills.ts";
+import { numbered, type Shown } from "./chart-look.ts";
 import { ChartTable } from "./chart-table.tsx";
 import { DayStrips } from "./day-strips.tsx";
 import { SeasonsUnshown } from "./seasons-unshown.tsx";
@@ -37,7 +39,7 @@ export function Chart({ drawn, season, alone, beside }: ChartProps) {
 				<Drawing drawn={drawn} alternative={alternative} beside={beside} />
 				{drawn.chart === "causes" && <Key drawn={drawn} />}
 				<p className="mb-3 mt-2 max-w-prose text-sm text-quiet">
-					{t(`chart.read.${drawn.chart}`)} {isCareful(drawn) && t("chart.care")}
+					{t(`chart.read.${drawn.chart}`)} {isCareful(drawn) && t("chart.care")} {isBare(drawn) && t("chart.bare")}
 				</p>
 				{drawn.chart === "seasons" && <SeasonsUnshown rows={drawn.rows} />}
 			</figure>
@@ -112,6 +114,26 @@ function Key({ drawn }: { drawn: Extract<ResolvedChart, { chart: "causes" }> }) 
 			))}
 		</ul>
 	);
+}
+
+/** Whether a figure in it has no likely range, as where all answers agree. */
+function isBare(drawn: ResolvedChart): boolean {
+	return numbered(drawnCells(drawn)).some((cell) => !rangeOf(cell));
+}
+
+function drawnCells(drawn: ResolvedChart): Shown[] {
+	switch (drawn.chart) {
+		case "crops":
+		case "areas":
+			return drawn.rows;
+		case "seasons":
+			return drawn.rows.map(({ cell }) => cell);
+		case "causes":
+			return drawn.rows.map(({ whole }) => whole);
+		// Strips of days draw no range.
+		case "windows":
+			return [];
+	}
 }
 
 function isCareful(drawn: ResolvedChart): boolean {

@@ -80,7 +80,8 @@ test("a release led by days tells the earliest crop in sentences of days, and ot
 	const crops = [cell("apple", "network", 125), cell("plum", "network", 118)];
 	const cropsOf = { first_bloom: ["apple", "plum"], petal_fall: ["apple", "plum"] };
 	const made = draftReport({ ...input, measures: days, cropsOf, measure: days[0]!, crops, districts: [] });
-	expect(made.summary.en).toBe("lead 2025 plum [[first_bloom|plum|network]] day");
+	expect(made.summary.en).toBe("Loss, lead 2025 plum [[first_bloom|plum|network]] day");
+	expect(made.title.es).toBe("title 2025: Pérdida");
 	expect(JSON.stringify(made.blocks)).toContain("where day");
 	expect(made.blocks).toContainEqual(expect.objectContaining({ type: "chart", chart: "windows" }));
 });

@@ -62,21 +62,27 @@ export function draftReport(input: DraftInput): ReportContent {
 		...neededCautions(input.measures).map((key) => ({ type: "caution", key }) as const),
 	];
 	return {
-		title: sentence("title", about),
+		title: titleOf(input, sentence("title", about)),
 		summary: leading,
 		blocks: blocks.map((block, index) => Object.assign({ id: `b${index + 1}` }, block) as Block),
 	};
 }
 
-/** Which crop stands out; where crops are nothing to set beside each other, the figure of all of them under the measure's name. */
+/** Which crop stands out, or the figure of all where crops are nothing to set beside each other. Only a crop's loss names itself. */
 function leadOf(
 	{ measure, crops }: DraftInput,
 	lead: Record<string, string | number>,
 	isClose: boolean,
 	sentence: Sentence,
 ): DraftWords {
-	if (isOfAllAlone(crops)) return named(sentence("leadAll", lead), measure.label);
-	return sentence(isClose ? "leadClose" : "lead", lead);
+	const said = sentence(isOfAllAlone(crops) ? "leadAll" : isClose ? "leadClose" : "lead", lead);
+	return measure.key === "crop_loss" ? said : named(said, measure.label);
+}
+
+/** A season's report is that on its harvest; others say which survey they tell of. */
+function titleOf({ measure, release }: DraftInput, { en, es }: DraftWords): DraftWords {
+	if (measure.key === "crop_loss") return { en, es };
+	return { en: `${en}: ${release.title.en}`, es: `${es}: ${release.title.es}` };
 }
 
 const counted = (status: string) => referenceText({ measure: cellCounts, crop: status, area: "county" });
@@ -120,7 +126,7 @@ function changePart({ measure, crops, earlier, release }: DraftInput, sentence: 
 function otherParts(input: DraftInput, crop: string, sentence: Sentence): Unnamed[] {
 	const { measures, measure, pests } = input;
 	const [day] = stripsOf(input);
-	const strips: Unnamed[] = day ? [chart("windows", day, crop)] : [];
+	const strips: Unnamed[] = day ? [{ type: "heading", text: sentence("when") }, chart("windows", day, crop)] : [];
 	const causes: Unnamed[] =
 		partsOfLoss(measure, measures).length > 0
 			? [{ type: "heading", text: sentence("causes") }, chart("causes", measure, crop)]
