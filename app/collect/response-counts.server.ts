@@ -26,38 +26,49 @@ export async function listCountyCounts(
 	surveyId: string,
 	{ sort, direction, page }: Order,
 ) {
-	const asked = sql<number>`sum(f.operations)::int`;
-	const answered = sql<number>`coalesce(a.answered, 0)::int`;
-	const share = sql<number>`100.0 * coalesce(a.answered, 0) / sum(f.operations)`;
-	const column = { county: sql.ref("c.name"), state: sql.ref("s.name"), asked, answered, share };
-	const answers = trx
-		.selectFrom("collect.answered_count")
-		.where("survey_id", "=", surveyId)
-		.where("crop_key", "=", "all")
-		.where("state_fips", "in", viewer.stateFips)
-		.groupBy("county_fips")
-		.select(["county_fips", sql<number>`sum(operations)`.as("answered")]);
+	const answered = sql<number>`coalesce(w.answered, 0)::int`;
+	const share = sql<number>`100.0 * coalesce(w.answered, 0) / a.asked`;
+	const column = { county: sql.ref("c.name"), state: sql.ref("s.name"), asked: sql.ref("a.asked"), answered, share };
+	// Summed up first, each once: before the planner knows how many there are, it summed the answers again for each row joined.
 	const rows: CountyCount[] = await trx
-		.selectFrom("collect.frame_count as f")
-		.innerJoin("directory.county as c", "c.county_fips", "f.county_fips")
-		.innerJoin("directory.state as s", "s.state_fips", "f.state_fips")
-		.leftJoin(answers.as("a"), "a.county_fips", "f.county_fips")
-		.where("f.survey_id", "=", surveyId)
-		.where("f.crop_key", "=", "all")
-		.where("f.state_fips", "in", viewer.stateFips)
-		.groupBy(["f.county_fips", "f.state_fips", "c.name", "s.name", "a.answered"])
-		.having(sql`sum(f.operations)`, ">", 0)
+		.with(
+			(cte) => cte("asked_of").materialized(),
+			(db) =>
+				db
+					.selectFrom("collect.frame_count")
+					.where("survey_id", "=", surveyId)
+					.where("crop_key", "=", "all")
+					.where("state_fips", "in", viewer.stateFips)
+					.groupBy(["county_fips", "state_fips"])
+					.having(sql`sum(operations)`, ">", 0)
+					.select(["county_fips", "state_fips", sql<number>`sum(operations)::int`.as("asked")]),
+		)
+		.with(
+			(cte) => cte("answered_of").materialized(),
+			(db) =>
+				db
+					.selectFrom("collect.answered_count")
+					.where("survey_id", "=", surveyId)
+					.where("crop_key", "=", "all")
+					.where("state_fips", "in", viewer.stateFips)
+					.groupBy("county_fips")
+					.select(["county_fips", sql<number>`sum(operations)`.as("answered")]),
+		)
+		.selectFrom("asked_of as a")
+		.innerJoin("directory.county as c", "c.county_fips", "a.county_fips")
+		.innerJoin("directory.state as s", "s.state_fips", "a.state_fips")
+		.leftJoin("answered_of as w", "w.county_fips", "a.county_fips")
 		.select([
-			"f.county_fips as countyFips",
+			"a.county_fips as countyFips",
 			"c.name as countyName",
-			"f.state_fips as stateFips",
-			asked.as("asked"),
+			"a.state_fips as stateFips",
+			"a.asked",
 			answered.as("answered"),
 			share.as("share"),
 		])
 		.orderBy(column[sort], direction)
 		.orderBy("c.name")
-		.orderBy("f.county_fips")
+		.orderBy("a.county_fips")
 		.execute();
 	const pageCount = Math.max(1, Math.ceil(rows.length / pageSize));
 	const shown = Math.min(page, pageCount);
