@@ -194,6 +194,13 @@ test("who subscribes again chooses anew, and is answered in the language of the 
 	expect(rows).toEqual([{ language: "en", crop_keys: ["apple"] }]);
 });
 
+test("the map prints on one sheet and its table on the next", async () => {
+	const page = await openPage(browser);
+	await page.goto(`${stack.baseUrl}/map?measure=crop_loss&crop=apple`);
+	const pdf = await page.pdf({ format: "Letter" });
+	expect(pdf.toString("latin1").match(/\/Type \/Page\n/g)).toHaveLength(2);
+});
+
 test("report and subscription meet WCAG by axe, on a phone too, and the page needs no sideways scrolling", async () => {
 	const page = await openPage(browser, { viewport: { width: 375, height: 740 } });
 	for (const path of [`/reports/${slug}`, "/reports", "/subscribe"]) {
