@@ -103,7 +103,7 @@ export default function BriefPage({ loaderData, actionData }: Route.ComponentPro
 					labelOf={new Map(measures.map(({ key, label }) => [key, label]))}
 				/>
 			)}
-			<Form key={brief.version} method="post" noValidate>
+			<Form key={brief.version} method="post" noValidate className={held ? "mt-10" : undefined}>
 				{/* After somebody else's change the next press is meant to go over it. */}
 				<input type="hidden" name="version" value={brief.version} />
 				<div className="max-w-3xl">

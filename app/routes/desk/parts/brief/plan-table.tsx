@@ -21,7 +21,7 @@ export function PlanTable({ planned, held, labelOf }: PlanTableProps) {
 	});
 	const wanted = ({ smallestN, largestCv }: PlannedFigure) =>
 		[
-			smallestN === null ? "" : t("brief.wantedN", { n: format.number(smallestN) }),
+			smallestN === null ? "" : t("brief.wantedN", { count: smallestN, value: format.number(smallestN) }),
 			largestCv === null ? "" : t("brief.wantedCv", { cv: format.quantity(largestCv * 100, "percent", 1) }),
 		]
 			.filter(Boolean)
