@@ -94,6 +94,9 @@ test("what was asked once of an operation is told of all crops, and no chart set
 	expect(made.blocks).not.toContainEqual(expect.objectContaining({ chart: "windows" }));
 	const figures = made.blocks.flatMap((block) => (block.type === "figure" ? [`${block.measure} ${block.crop}`] : []));
 	expect(figures).toEqual(["total_loss plum", "first_harvest all", "last_harvest all"]);
+	// No day is where it was worst: days have a heading of their own.
+	const first = made.blocks.findIndex((block) => block.type === "figure" && block.measure === "first_harvest");
+	expect(made.blocks[first - 1]).toMatchObject({ type: "heading", text: { en: "when" } });
 });
 
 test("a release led by what was asked once leads with all crops together", () => {

@@ -53,6 +53,7 @@ export function draftReport(input: DraftInput): ReportContent {
 		{ type: "heading", text: sentence("happened") },
 		{ type: "text", text: leading },
 		...(worst && !isOfAllAlone(crops) ? [chart("crops", measure, worst.cropKey)] : []),
+		...(worst ? besideLead(input, worst.cropKey) : []),
 		...changePart(input, sentence),
 		...(worst ? wherePart(input, worst.cropKey, sentence) : []),
 		...(worst ? otherParts(input, worst.cropKey, sentence) : []),
@@ -122,11 +123,11 @@ function changePart({ measure, crops, earlier, release }: DraftInput, sentence: 
 	];
 }
 
-/** Days as strips, the causes of a loss, and the pests that were seen most. */
+/** Days, the causes of a loss, and the pests that were seen most. */
 function otherParts(input: DraftInput, crop: string, sentence: Sentence): Unnamed[] {
 	const { measures, measure, pests } = input;
-	const [day] = stripsOf(input);
-	const strips: Unnamed[] = day ? [{ type: "heading", text: sentence("when") }, chart("windows", day, crop)] : [];
+	const days = daysPart(input, crop);
+	const when: Unnamed[] = days.length > 0 ? [{ type: "heading", text: sentence("when") }, ...days] : [];
 	const causes: Unnamed[] =
 		partsOfLoss(measure, measures).length > 0
 			? [{ type: "heading", text: sentence("causes") }, chart("causes", measure, crop)]
@@ -147,9 +148,37 @@ function otherParts(input: DraftInput, crop: string, sentence: Sentence): Unname
 					{ type: "text", text: listed(seen.map(({ label, ...said }) => named(sentence("pest", said), label))) },
 				]
 			: [];
-	return [...strips, ...causes, ...ofPests];
+	return [...when, ...causes, ...ofPests];
 }
 const mostPests = 5;
+
+/** Days as strips crop by crop where they were asked so, the others as figures. */
+function daysPart(input: DraftInput, crop: string): Unnamed[] {
+	const drawn = stripsOf(input);
+	const others = input.measures.filter(
+		(day) => day.kind === "day" && day.key !== input.measure.key && !drawn.includes(day),
+	);
+	const [day] = drawn;
+	return [...(day ? [chart("windows", day, crop)] : []), ...others.flatMap(({ key }) => figureOf(input, key, crop))];
+}
+
+/** Up to two other measures that are worse the same way as the leading one. */
+function besideLead(input: DraftInput, crop: string): Unnamed[] {
+	const { measures, measure } = input;
+	const parts = partsOfLoss(measure, measures);
+	return measures
+		.filter(({ key }) => key !== measure.key)
+		.filter((other) => other.kind !== "day" && other.worse === measure.worse && other.hue !== "pests")
+		.filter((other) => !parts.includes(other))
+		.slice(0, 2)
+		.flatMap(({ key }) => figureOf(input, key, crop));
+}
+
+/** The whole network's figure of the leading crop, or of all where they were asked together. */
+function figureOf({ cropsOf }: DraftInput, measure: string, crop: string): Unnamed[] {
+	const told = [crop, "all"].find((one) => cropsOf[measure]?.includes(one));
+	return told ? [{ type: "figure", measure, crop: told, area: "network" }] : [];
+}
 
 /** The days that are drawn as strips, crop by crop: two or more, if they were asked so. */
 function stripsOf({ measures, cropsOf }: DraftInput): ReleaseMeasure[] {
@@ -169,9 +198,9 @@ const listed = (lines: DraftWords[]): DraftWords => ({
 
 type Unnamed = Block extends infer B ? (B extends Block ? Omit<B, "id"> : never) : never;
 
-/** A map of the worst crop, its widest differences between districts, and the other measures of the same crop. */
+/** A map of the worst crop, its widest differences between districts, and each of them. */
 function wherePart(input: DraftInput, crop: string, sentence: Sentence): Unnamed[] {
-	const { measures, measure, districts, cropsOf } = input;
+	const { measure, districts } = input;
 	// Ordered as crops are; here there is one, which may be all of them.
 	const shown = worstFirst(
 		measure,
@@ -194,23 +223,11 @@ function wherePart(input: DraftInput, crop: string, sentence: Sentence): Unnamed
 					},
 				]
 			: [];
-	const rest = measures.filter(({ key }) => key !== measure.key);
-	const drawn = stripsOf(input);
-	const days = rest.filter((other) => other.kind === "day" && !drawn.includes(other));
-	const parts = partsOfLoss(measure, measures);
-	const others = rest
-		.filter((other) => other.kind !== "day" && other.worse === measure.worse && other.hue !== "pests")
-		.filter((other) => !parts.includes(other))
-		.slice(0, 2);
 	return [
 		{ type: "heading", text: sentence("where", { measure: saidOf(measure) }) },
 		{ type: "map", measure: measure.key, crop },
 		...widest,
 		chart("areas", measure, crop),
-		...[...others, ...days].flatMap(({ key }) => {
-			const told = [crop, "all"].find((one) => cropsOf[key]?.includes(one));
-			return told ? [{ type: "figure" as const, measure: key, crop: told, area: "network" }] : [];
-		}),
 	];
 }
 
