@@ -96,7 +96,7 @@ test("what was asked once of an operation is told of all crops, and no chart set
 	expect(figures).toEqual(["total_loss plum", "first_harvest all", "last_harvest all"]);
 	// No day is where it was worst: days have a heading of their own.
 	const first = made.blocks.findIndex((block) => block.type === "figure" && block.measure === "first_harvest");
-	expect(made.blocks[first - 1]).toMatchObject({ type: "heading", text: { en: "when" } });
+	expect(made.blocks[first - 1]).toMatchObject({ type: "heading", text: { en: expect.stringMatching(/^when/) } });
 });
 
 test("a release led by what was asked once leads with all crops together", () => {
