@@ -1,3 +1,4 @@
+import { typedDay } from "#app/lib/typed-moment.ts";
 import type { Answer, Question } from "./form.ts";
 import { postedChoices, postedText, type StepValues } from "./posted.ts";
 import { readNumber } from "./read-number.ts";
@@ -84,7 +85,7 @@ function readText(
 
 /** A day of the season's year that is not still to come. Days of ISO 8601 compare as texts. */
 function readDate(text: string, { season, today }: ReadSettings): Reading {
-	const moment = /^\d{4}-\d{2}-\d{2}$/.test(text) ? Date.parse(`${text}T00:00:00Z`) : Number.NaN;
+	const moment = typedDay.test(text) ? Date.parse(`${text}T00:00:00Z`) : Number.NaN;
 	if (Number.isNaN(moment) || new Date(moment).toISOString().slice(0, 10) !== text) return { code: "date_wrong" };
 	if (text.slice(0, 4) !== String(season)) return { code: "date_outside_season" };
 	if (text > today) return { code: "date_in_future" };

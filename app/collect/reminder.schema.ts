@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { typedClock, typedDay } from "#app/lib/typed-moment.ts";
 
 export const reminderWaves = [1, 2] as const;
 export const reminderFields = {
@@ -7,8 +8,8 @@ export const reminderFields = {
 } as const;
 
 const text = (pattern: RegExp, code: string) => z.string().trim().max(10, "too_long").regex(pattern, code).optional();
-const day = text(/^\d{4}-\d{2}-\d{2}$/, "date_wrong");
-const clock = text(/^([01]?\d|2[0-3]):[0-5]\d$/, "time_wrong");
+const day = text(typedDay, "date_wrong");
+const clock = text(typedClock, "time_wrong");
 
 /** Days and clock times of the two reminders, in the survey's zone. Both empty: that reminder is not sent. */
 export const ReminderForm = z.object({ firstOn: day, firstAt: clock, secondOn: day, secondAt: clock });

@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { typedClock, typedDay } from "#app/lib/typed-moment.ts";
 
 const text = (most: number) => z.string({ error: "empty" }).trim().min(1, "empty").max(most, "too_long");
 const several = (of: z.ZodType<string>) =>
@@ -6,8 +7,8 @@ const several = (of: z.ZodType<string>) =>
 
 /** A closing day and clock time, as the two fields send them, on the clock of the survey's states. */
 export const ClosingForm = z.object({
-	closesOn: text(10).regex(/^\d{4}-\d{2}-\d{2}$/, "date_wrong"),
-	closesAt: text(5).regex(/^([01]?\d|2[0-3]):[0-5]\d$/, "time_wrong"),
+	closesOn: text(10).regex(typedDay, "date_wrong"),
+	closesAt: text(5).regex(typedClock, "time_wrong"),
 });
 export type ClosingForm = z.infer<typeof ClosingForm>;
 

@@ -156,30 +156,28 @@ export async function readDraft(
 	{ formTitle, ...draft }: SurveyChange & { formTitle: Words | undefined },
 	now: Date,
 ) {
-	const problems = await findDraftProblems(trx, viewer, draft, now);
+	const { problems, closesAt } = await checkDraft(trx, viewer, draft, now);
 	if (!formTitle) problems.push({ field: "formKey", code: "choice_wrong" });
-	if (problems.length > 0 || !formTitle) return { problems };
-	const closing = readClosing(draft, await clockOf(trx, draft.states), now);
-	if ("problem" in closing) return { problems: [closing.problem] };
+	if (problems.length > 0 || !formTitle || !closesAt) return { problems };
 	const values = {
 		season: draft.season,
 		title: JSON.stringify({ en: draft.titleEn || formTitle.en, es: draft.titleEs || formTitle.es }),
 		crop_keys: [...new Set(draft.crops)],
-		closes_at: closing.closesAt,
+		closes_at: closesAt,
 	};
 	return { values };
 }
 
 /**
- * What the form alone cannot tell of a draft, in the order of its fields. Of one that came with other faults, of whatever
- * could be read of it, so that all is told at once.
+ * What the form alone cannot tell of a draft, in the order of its fields, and when it closes. Of one that came with other
+ * faults, of whatever could be read of it, so that all is told at once.
  */
-export async function findDraftProblems(
+export async function checkDraft(
 	trx: Trx,
 	viewer: Associate,
 	draft: Partial<SurveyChange>,
-	now = new Date(),
-): Promise<Problem[]> {
+	now: Date,
+): Promise<{ problems: Problem[]; closesAt?: Date }> {
 	const problems: Problem[] = [];
 	// A title in one language alone would stand beside the form's in the other: two names for one survey.
 	if (draft.titleEs && "titleEn" in draft && !draft.titleEn) problems.push({ field: "titleEn", code: "empty" });
@@ -187,12 +185,11 @@ export async function findDraftProblems(
 	if (draft.crops && !(await areCrops(trx, draft.crops))) problems.push({ field: "crops", code: "choice_wrong" });
 	if (draft.states?.some((state) => !viewer.stateFips.includes(state)))
 		problems.push({ field: "states", code: "choice_wrong" });
-	if (draft.closesOn) {
-		const { closesOn, closesAt = "23:59", states = viewer.stateFips } = draft;
-		const closing = readClosing({ closesOn, closesAt }, await clockOf(trx, states), now);
-		if ("problem" in closing) problems.push(closing.problem);
-	}
-	return problems;
+	if (!draft.closesOn) return { problems };
+	const { closesOn, closesAt = "23:59", states = viewer.stateFips } = draft;
+	const closing = readClosing({ closesOn, closesAt }, await clockOf(trx, states), now);
+	if ("problem" in closing) return { problems: [...problems, closing.problem] };
+	return { problems, closesAt: closing.closesAt };
 }
 
 async function areCrops(trx: Trx, keys: string[]): Promise<boolean> {

@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { typedClock, typedDay } from "#app/lib/typed-moment.ts";
 
 const text = (most: number) => z.string({ error: "empty" }).trim().min(1, "empty").max(most, "too_long");
 
@@ -10,8 +11,8 @@ export const Decision = z.discriminatedUnion("decision", [
 	z.object({ decision: z.literal("publish") }),
 	z.object({
 		decision: z.literal("schedule"),
-		publishOn: text(10).regex(/^\d{4}-\d{2}-\d{2}$/, "date_wrong"),
-		publishAt: text(5).regex(/^\d{1,2}:\d{2}$/, "time_wrong"),
+		publishOn: text(10).regex(typedDay, "date_wrong"),
+		publishAt: text(5).regex(typedClock, "time_wrong"),
 	}),
 	z.object({ decision: z.literal("unschedule") }),
 	z.object({ decision: z.literal("reject"), note: text(2000) }),

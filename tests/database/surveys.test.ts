@@ -5,7 +5,7 @@ import { countLeftOut, listFrameParts } from "#app/collect/frame-parts.server.ts
 import { wallClockOf } from "#app/collect/survey-closing.ts";
 import { changeDraft, discardDraft } from "#app/collect/survey-mending.server.ts";
 import { closeSurvey, extendSurvey, openSurvey } from "#app/collect/survey-opening.server.ts";
-import { createSurvey, findDraftProblems, findSurvey, listSurveys } from "#app/collect/surveys.server.ts";
+import { checkDraft, createSurvey, findSurvey, listSurveys } from "#app/collect/surveys.server.ts";
 import { addOperation, asDesk, count, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
 const { owner, iowa, wisconsin, both } = await openSurveysDatabase();
@@ -41,11 +41,14 @@ describe("a draft", () => {
 
 	test("tells of whatever could be read of it what is to be mended, where the rest is to be mended too", async () => {
 		const read = { titleEn: "Frost", titleEs: undefined, states: ["55"], closesOn: "2020-01-01" };
-		expect(await asDesk(iowa, (trx) => findDraftProblems(trx, iowa, read))).toEqual([
-			{ field: "titleEs", code: "empty" },
-			{ field: "states", code: "choice_wrong" },
-			{ field: "closesOn", code: "closing_past" },
-		]);
+		const told = await asDesk(iowa, (trx) => checkDraft(trx, iowa, read, new Date()));
+		expect(told).toEqual({
+			problems: [
+				{ field: "titleEs", code: "empty" },
+				{ field: "states", code: "choice_wrong" },
+				{ field: "closesOn", code: "closing_past" },
+			],
+		});
 	});
 
 	test("closes by the clock of most of its states; of two clocks with as many, by the western one", async () => {

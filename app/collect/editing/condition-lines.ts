@@ -1,6 +1,7 @@
 import { z } from "zod";
 import type { Comparison, Condition } from "#app/lib/condition.ts";
 import type { Problem } from "#app/lib/parse-form.ts";
+import { typedDay } from "#app/lib/typed-moment.ts";
 import type { Question, Screen } from "../form.ts";
 import { parsePlainNumber, writeNumber } from "../typed-number.ts";
 import { type FormDraft, findQuestion, questionsOf } from "./draft.ts";
@@ -101,7 +102,7 @@ function readRight(line: Line, question: Question, standing: Standing, language:
 	if (line.other) return readOther(line, question, standing, language);
 	if (typed === "") return { field: "value", code: "condition_value" };
 	if (question.type === "date") {
-		const isDay = /^\d{4}-\d{2}-\d{2}$/.test(typed) && !Number.isNaN(Date.parse(typed));
+		const isDay = typedDay.test(typed) && !Number.isNaN(Date.parse(typed));
 		return isDay ? { value: typed } : { field: "value", code: "date_wrong" };
 	}
 	const unit = question.type === "percent" ? "percent" : undefined;

@@ -76,7 +76,8 @@ function leadOf(
 	isClose: boolean,
 	sentence: Sentence,
 ): DraftWords {
-	const said = sentence(isOfAllAlone(crops) ? "leadAll" : isClose ? "leadClose" : "lead", lead);
+	if (isOfAllAlone(crops)) return named(sentence("leadAll", lead), measure.label);
+	const said = sentence(isClose ? "leadClose" : "lead", lead);
 	return measure.key === "crop_loss" ? said : named(said, measure.label);
 }
 
