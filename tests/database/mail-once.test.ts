@@ -32,6 +32,15 @@ afterAll(async () => {
 });
 beforeEach(() => void mailServer.reset());
 
+/** Whether nobody has the mailing in hand (`takeMailing`). */
+async function isFree(mailingId: string): Promise<boolean> {
+	const { rows } = await owner.query(
+		"select pg_try_advisory_xact_lock(hashtextextended('send_mail:' || $1::text, 0)) as free",
+		[mailingId],
+	);
+	return rows[0].free;
+}
+
 const invite = (surveyId: string) => asDesk(iowa, (trx) => sendInvitations(trx, iowa, surveyId));
 
 test("a worker killed between the server's yes and its own note sends nothing twice", async () => {
@@ -44,6 +53,8 @@ test("a worker killed between the server's yes and its own note sends nothing tw
 	expect(await findMailingRow(owner, mailingId)).toMatchObject({ sent_at: null, failed_at: null });
 
 	mailServer.onMail = undefined;
+	// Its attempt ends when the database notices that it is gone, which takes a moment on a busy machine.
+	await expect.poll(() => isFree(mailingId)).toBe(true);
 	await sendMail({ mailingId });
 	expect(mailServer.received).toHaveLength(1);
 	expect(await findMailingRow(owner, mailingId)).toMatchObject({ failure: "uncertain", disposition: "not_reached" });
