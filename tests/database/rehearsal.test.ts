@@ -48,7 +48,7 @@ async function rehearse(viewer: Associate, surveyId: string) {
 const testGrowers = (viewer: Associate, rehearsalId: string) =>
 	inHand(viewer, rehearsalId, (trx) => listTestGrowers(trx, viewer, rehearsalId));
 
-/** What sending in leaves: a response and its facts, which count in the tallies. */
+/** What sending in leaves: a response, its facts, which count in the tallies, and what a check found odd. */
 async function answer(rehearsalId: string) {
 	const growers = await testGrowers(iowa, rehearsalId);
 	for (const { operationId } of growers) {
@@ -57,6 +57,12 @@ async function answer(rehearsalId: string) {
 			`insert into collect.fact (survey_id, measure_key, crop_key, operation_id, owner_id, county_fips, state_fips, stratum_key, y, x)
 			select survey_id, 'loss_share', 'apple', operation_id, owner_id, county_fips, state_fips, stratum_key, 10, 40
 			from collect.frame_operation where survey_id = $1 and operation_id = $2`,
+			[rehearsalId, operationId],
+		);
+		await owner.query(
+			`insert into collect.edit_finding (response_id, check_kind, check_key, question_key, about, about_key)
+			select response_id, 'range', 'range', 'harvested', '[]', 'odd' from collect.response
+			where survey_id = $1 and operation_id = $2`,
 			[rehearsalId, operationId],
 		);
 	}
@@ -116,7 +122,13 @@ test("lists, frames, exports and mail show the same with a rehearsal as without,
 	const growers = await testGrowers(iowa, rehearsalId);
 	expect(growers).toHaveLength(6);
 	const now = await rowsOfAll();
-	for (const table of ["directory.operation", "collect.response", "collect.fact", "collect.tally"])
+	for (const table of [
+		"directory.operation",
+		"collect.response",
+		"collect.fact",
+		"collect.tally",
+		"collect.edit_finding",
+	])
 		expect(now[table]).toBeGreaterThan(rows[table]!);
 	expect(await seen()).toEqual(before);
 
