@@ -52,6 +52,19 @@ describe("what is to be mended", () => {
 		expect(read("comment", { maxLength: "12.5" }).problems).toEqual([{ field: "maxLength", code: "not_whole" }]);
 	});
 
+	test("another kind of answer is begun as a new question's, since the page did not show its fields", () => {
+		const typed = { limits: { hardMax: "many" } };
+		const choice = read("harvested", { ...typed, type: "choice" });
+		expect(choice.problems).toEqual([]);
+		expect(choice.question).toMatchObject({ options: [{ text: { en: "", es: "" } }, { text: { en: "", es: "" } }] });
+		expect(read("harvested", { ...typed, type: "percent" }).question).toMatchObject({
+			limits: { hardMin: 0, hardMax: 100 },
+		});
+		// Where both kinds have the same fields, what is in them stays.
+		const several = read("bud_set", { type: "several" }).question;
+		expect(several).toMatchObject({ options: fieldsOf("bud_set").options.map(({ key }) => ({ key })) });
+	});
+
 	test("fewer than two answers to choose from", () => {
 		const { options } = fieldsOf("bud_set");
 		expect(read("bud_set", { options: options.slice(0, 1) }).problems).toEqual([

@@ -113,7 +113,20 @@ function readAsked(
 	return { condition: read.condition, whenUnsure: skips ? "skip" : undefined };
 }
 
-/** What only some types have. */
+/** Types whose own fields are the same: what was typed into them holds for the other type too. */
+const ownFields = {
+	number: "number",
+	percent: "percent",
+	date: "date",
+	choice: "options",
+	several: "options",
+	rating: "options",
+	short_text: "length",
+	long_text: "length",
+	photo: "none",
+} as const satisfies Record<Question["type"], string>;
+
+/** What only some types have. Of a type whose fields the page did not have, it is what every new question has. */
 function withOwnParts(
 	question: Question,
 	fields: QuestionFields,
@@ -121,6 +134,7 @@ function withOwnParts(
 	language: string,
 	problems: Problem[],
 ): Question {
+	if (ownFields[question.type] !== ownFields[before.type]) return question;
 	switch (question.type) {
 		case "number":
 		case "percent": {
