@@ -37,13 +37,14 @@ test.each(Object.entries(readyForms))(
 describe("what blocks", () => {
 	test("a text that one language lacks, told with its language and its place", () => {
 		const draft = formOf(number("trees", { text: { en: "Trees", es: " " } }));
-		expect(findingsOf(draft, nobody)).toContainEqual({
-			kind: "untranslated",
-			blocks: true,
-			language: "es",
-			questionKey: "trees",
-		});
+		const missing = { kind: "untranslated", blocks: true, language: "es" };
+		// Once: its measure is called as it is.
+		expect(findingsOf(draft, nobody)).toEqual([{ ...missing, questionKey: "trees" }]);
 		expect(finishedForm(draft, nobody)).toBeUndefined();
+		const measure = definitionOfDraft(draft).measures.find(({ base }) => !base);
+		const label = { en: "Trees left", es: "" };
+		const renamed = { ...formOf(number("trees")), names: { [measure!.key]: label } };
+		expect(findingsOf(renamed, nobody)).toEqual([{ ...missing, measureKey: measure!.key, about: label }]);
 	});
 
 	test("a form without a question, a screen without one, and a form that only asks for texts", () => {
@@ -63,6 +64,14 @@ describe("what blocks", () => {
 		const draft = formOf(acres, number("trees", { condition }), number("fruit"));
 		expect(codes(draft)).toContain(code);
 		expect(finishedForm(draft, nobody)).toBeUndefined();
+	});
+
+	test("a condition on a question that comes later, once", () => {
+		const condition: Condition = { compare: "=", question: "trees", to: { value: 1 } };
+		const draft = formOf(number("fruit", { condition }), number("trees"));
+		expect(findingsOf(draft, nobody)).toEqual([
+			{ kind: "condition_later", blocks: true, questionKey: "fruit", about: words("trees") },
+		]);
 	});
 
 	test("a question that only two answers at once could lead to, which exclude each other", () => {

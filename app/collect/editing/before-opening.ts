@@ -17,6 +17,7 @@ export type Finding = {
 	/** Where it is mended; of the whole form where neither is told. */
 	screenKey?: string;
 	questionKey?: string;
+	measureKey?: string;
 	/** What the sentence speaks of beside its place: another question, a measure, a number. */
 	about?: Words;
 	count?: number;
@@ -34,12 +35,9 @@ export type FindingKind =
  * @param held questions that growers have answered, with the newest version that asked them.
  */
 export function findingsOf(draft: FormDraft, held: Held, published?: FormDefinition): Finding[] {
-	const found = [
-		...wholeFindings(draft),
-		...draft.screens.flatMap((screen) => [...screenFindings(draft, screen)]),
-		...faultFindings(draft),
-		...heldFindings(draft, held, published),
-	];
+	const told = [...wholeFindings(draft), ...draft.screens.flatMap((screen) => [...screenFindings(draft, screen)])];
+	const faults = [...faultFindings(draft)].filter((fault) => !isToldBetter(fault, told));
+	const found = [...told, ...faults, ...heldFindings(draft, held, published)];
 	const seen = new Set<string>();
 	return found.filter((finding) => {
 		const key = JSON.stringify(finding);
@@ -61,7 +59,9 @@ function* wholeFindings(draft: FormDraft): Generator<Finding> {
 	else if (measures.length === 0) yield { kind: "no_measure", blocks: true };
 	if (length > mostQuestions) yield { kind: "too_many", blocks: true, count: mostQuestions };
 	if (minutes > mostMinutes) yield { kind: "too_long", blocks: false, count: minutes };
-	for (const { label } of measures) yield* untranslated(label, {}, label);
+	// A measure that is called as its question is needs no translation of its own.
+	const called = measures.filter(({ key }) => draft.names[key] || draft.measures.some((own) => own.key === key));
+	for (const { key, label } of called) yield* untranslated(label, { measureKey: key }, label);
 	for (const questionKey of unreachableQuestions(draft)) yield { kind: "unreachable", blocks: true, questionKey };
 	const named = new Set(measures.flatMap(questionsOfMeasure));
 	for (const { question } of questionsOf(draft)) {
@@ -100,7 +100,7 @@ export function areCrossed(limits: { hardMin?: number; hardMax?: number; softMin
 	return hardMin > hardMax || softMin > softMax || softMin < hardMin || softMax > hardMax;
 }
 
-type Place = { screenKey?: string; questionKey?: string };
+type Place = Pick<Finding, "screenKey" | "questionKey" | "measureKey">;
 
 function* untranslated(words: Words, at: Place, about?: Words): Generator<Finding> {
 	for (const language of ["en", "es"] as const) {
@@ -135,7 +135,14 @@ function namedIn(condition: Condition): string[] {
 	return [...new Set(comparisonsIn(condition).flatMap(({ of }) => questionsOfComparison(of)))];
 }
 
-/** The faults that would make a form ask or count wrongly, as far as none of the findings above has told them better. */
+/** A condition that waits for what is gone or comes later is a fault for that very reason: once is enough. */
+function isToldBetter({ kind, screenKey, questionKey }: Finding, told: Finding[]): boolean {
+	if (kind !== "condition_wrong" && kind !== "check_wrong") return false;
+	const inPlace = told.filter((one) => one.screenKey === screenKey && one.questionKey === questionKey);
+	return inPlace.some((one) => one.kind === "condition_gone" || one.kind === "condition_later");
+}
+
+/** The faults that would make a form ask or count wrongly. */
 function* faultFindings(draft: FormDraft): Generator<Finding> {
 	for (const { path } of faultsOf(definitionOfDraft(draft))) {
 		const [part, index, inner, innerIndex] = path;

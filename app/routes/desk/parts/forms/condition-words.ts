@@ -26,7 +26,7 @@ export function useConditionWords(draft: Pick<FormDraft, "screens">) {
 			const other = nameOf(to.question);
 			const { times } = to;
 			return times === undefined
-				? other
+				? t("condition.named", { question: other })
 				: t("condition.times", { times: format.number(times, decimalsOf(times)), question: other });
 		}
 		if (typeof to.value === "number") return format.number(to.value, decimalsOf(to.value));

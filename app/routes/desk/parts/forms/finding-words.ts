@@ -11,10 +11,11 @@ export function useFindingWords(formId: string, draft: FormDraft) {
 	const { t } = useTranslation("forms");
 	const said = useFormWords();
 	const format = useFormat();
-	return ({ kind, screenKey, questionKey, about, count = 0, language }: Finding) => {
+	return ({ kind, screenKey, questionKey, measureKey, about, count = 0, language }: Finding) => {
 		const question = questionKey === undefined ? undefined : findQuestion(draft, questionKey)?.question;
 		const screen = screenKey === undefined ? undefined : findScreen(draft, screenKey);
-		const place = question ? said(question.label ?? question.text) : screen ? said(screen.title) : t("finding.whole");
+		const whole = measureKey === undefined ? t("finding.whole") : t("layout.measures");
+		const place = question ? said(question.label ?? question.text) : screen ? said(screen.title) : whole;
 		const words = t(`finding.${kind}`, {
 			about: about ? said(about) : "",
 			count,
@@ -25,7 +26,7 @@ export function useFindingWords(formId: string, draft: FormDraft) {
 			? href("/desk/forms/:formId/questions/:key", { formId, key: question.key })
 			: screen
 				? href("/desk/forms/:formId/screens/:key", { formId, key: screen.key })
-				: href("/desk/forms/:formId", { formId });
+				: href(measureKey === undefined ? "/desk/forms/:formId" : "/desk/forms/:formId/measures", { formId });
 		return { place, words, to };
 	};
 }
