@@ -23,7 +23,13 @@ describe("what is to be mended", () => {
 		["a text that is missing in both languages", { text: { en: "", es: "" } }, "text.en", "empty"],
 		["a text beyond its limit", { help: { en: "x".repeat(longestText + 1), es: "" } }, "help.en", "too_long_limit"],
 		["crossed limits", { limits: { hardMin: "10", hardMax: "5" } }, "limits.hardMax", "limits_crossed"],
-		["a soft limit outside a hard one", { limits: { hardMax: "5", softMax: "6" } }, "limits.softMin", "limits_outside"],
+		["a soft limit outside a hard one", { limits: { hardMax: "5", softMax: "6" } }, "limits.softMax", "limits_outside"],
+		[
+			"a soft limit below all that is taken",
+			{ limits: { hardMin: "5", softMin: "4" } },
+			"limits.softMin",
+			"limits_outside",
+		],
 		["a limit that is no number", { limits: { hardMax: "many" } }, "limits.hardMax", "not_a_number"],
 		["a limit in another unit than is kept", { limits: { hardMax: "20 kg" } }, "limits.hardMax", "not_a_number"],
 	])("%s is told beside its field", (_case, more, field, code) => {

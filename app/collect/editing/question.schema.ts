@@ -180,7 +180,10 @@ function readLimits(typed: QuestionFields["limits"], { language, unit }: LimitsO
 	const { hardMin, hardMax } = limits;
 	if (hardMin !== undefined && hardMax !== undefined && hardMin > hardMax)
 		problems.push({ field: "limits.hardMax", code: "limits_crossed" });
-	else if (areCrossed(limits)) problems.push({ field: "limits.softMin", code: "limits_outside" });
+	else if (areCrossed(limits)) {
+		const field = areCrossed({ ...limits, softMax: undefined }) ? "limits.softMin" : "limits.softMax";
+		problems.push({ field, code: "limits_outside" });
+	}
 	return limits;
 }
 
