@@ -8,10 +8,10 @@ export type FormDifference = {
 	kind: DifferenceKind;
 	/** What it is of: a question, a screen, a measure, by its name. */
 	about: Words;
-	/** A text before and after, in the language that changed. */
+	/** A text before and after, in the language that changed, or in both where it came or went. */
 	language?: "en" | "es";
-	before?: string;
-	after?: string;
+	before?: string | Words;
+	after?: string | Words;
 };
 export type DifferenceKind =
 	| ("form_title" | "screen_added" | "screen_removed" | "screen_moved" | "screen_title" | "screen_help")
@@ -140,11 +140,10 @@ function* optionDifferences(was: Option[], now: Option[], about: Words): Generat
 	const [old, kept] = [byKey(was), byKey(now)];
 	for (const option of now) {
 		const before = old.get(option.key);
-		if (!before) yield { kind: "option_added", about, after: option.text.en || option.text.es };
+		if (!before) yield { kind: "option_added", about, after: option.text };
 		else yield* textDifferences("option_text", about, before.text, option.text);
 	}
-	for (const { text } of was.filter(({ key }) => !kept.has(key)))
-		yield { kind: "option_removed", about, before: text.en || text.es };
+	for (const { text } of was.filter(({ key }) => !kept.has(key))) yield { kind: "option_removed", about, before: text };
 	const bones = (options: Option[]) => options.filter(({ key }) => old.has(key) && kept.has(key)).map(withoutWords);
 	if (!isSame(bones(was), bones(now))) yield { kind: "options_order", about };
 }

@@ -35,11 +35,13 @@ export function useFindingWords(formId: string, draft: FormDraft) {
 export function useDifferenceWords() {
 	const { t } = useTranslation("forms");
 	const said = useFormWords();
+	const told = (text: FormDifference["before"]) =>
+		typeof text === "object" ? said(text) : text || t("difference.nothing");
 	return ({ kind, about, language, before, after }: FormDifference): string =>
 		t(`difference.${kind}`, {
 			about: said(about),
 			language: language ? t(`language.${language}`) : "",
-			before: before || t("difference.nothing"),
-			after: after || t("difference.nothing"),
+			before: told(before),
+			after: told(after),
 		});
 }
