@@ -8,6 +8,7 @@ import { isLanguage } from "#app/i18n/language.ts";
 import { loadLanguage } from "#app/i18n/load-language.client.ts";
 import { i18nextSettings } from "#app/i18n/settings.ts";
 import { tellHalfTypedDays } from "#app/lib/half-typed-days.ts";
+import { holdRefusedPosts } from "#app/lib/held-post.ts";
 
 // The content security policy forbids building functions from text, which zod would try for speed.
 z.config({ jitless: true });
@@ -32,4 +33,5 @@ async function hydrate() {
 }
 
 tellHalfTypedDays(document);
+holdRefusedPosts();
 void hydrate();

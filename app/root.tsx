@@ -3,6 +3,7 @@ import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
 import { Links, Meta, Outlet, Scripts, ScrollRestoration, useMatches } from "react-router";
 import type { Route } from "./+types/root";
+import { holderOf } from "#app/auth/holder.server.ts";
 import { sessionContext, sessionMiddleware } from "#app/auth/session.server.ts";
 import { surveyInHandMiddleware } from "#app/auth/survey-in-hand.server.ts";
 import { visitorContext, visitorMiddleware } from "#app/auth/visitor.server.ts";
@@ -38,6 +39,7 @@ export function loader({ context }: Route.LoaderArgs) {
 		// Only what the navigation needs: a name and which areas to offer.
 		visitor: person && {
 			displayName: person.displayName,
+			holder: holderOf("person", person.personId),
 			areas: {
 				desk: grants.stateFips.length > 0,
 				network: grants.coordinator,
@@ -53,11 +55,17 @@ export const links: Route.LinksFunction = () => [{ rel: "icon", href: "/favicon.
 export function Layout({ children }: { children: ReactNode }) {
 	const { i18n } = useTranslation();
 	const demo = useDemo();
-	const told = useShellData()?.toast;
+	const shell = useShellData();
+	const told = shell?.toast;
 	// What was just told can be closed, which takes scripts.
 	const isBare = useMatches().some(({ handle }) => (handle as { bare?: boolean } | undefined)?.bare) && !told;
 	return (
-		<html lang={i18n.language} dir={i18n.dir()} data-demo={demo ? "yes" : undefined}>
+		<html
+			lang={i18n.language}
+			dir={i18n.dir()}
+			data-demo={demo ? "yes" : undefined}
+			data-holder={shell?.visitor?.holder}
+		>
 			<head>
 				<meta charSet="utf-8" />
 				<meta name="viewport" content="width=device-width, initial-scale=1" />

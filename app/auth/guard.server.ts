@@ -1,5 +1,7 @@
 import type { MiddlewareFunction, RouterContextProvider } from "react-router";
 import { refusal } from "#app/lib/refusal.ts";
+import { holderOf } from "./holder.server.ts";
+import { withPosted } from "./posted-form.server.ts";
 import { scopedTransaction, type Scope, type Trx } from "./scope.server.ts";
 import type { Associate, Coordinator, Grower, Person, Researcher } from "./viewer.ts";
 import { surveyInHandContext } from "./survey-in-hand.server.ts";
@@ -13,10 +15,11 @@ function access<V>(viewer: V, scope: Scope): Access<V> {
 	return { viewer, transaction: (work) => scopedTransaction(scope, work) };
 }
 
-/** @throws refusal 401 when nobody is signed in. */
+/** @throws refusal 401 when nobody is signed in, 412 when the page that sends was somebody else's. */
 export function requirePerson(context: Context): Access<Person> {
-	const { person } = context.get(visitorContext);
+	const { person, sender } = context.get(visitorContext);
 	if (!person) throw refusal("sign_in_needed");
+	if (sender && sender !== holderOf("person", person.personId)) throw refusal("other_person");
 	return access(person, { kind: "none" });
 }
 
@@ -74,8 +77,12 @@ export function requireOrchard(context: Context): Access<Grower> {
 /** Guards of the areas of the site, one for each; their layouts have loaders, so that data requests pass them too. */
 const guard =
 	(require: (context: Context) => unknown): MiddlewareFunction<Response> =>
-	({ context }, next) => {
-		require(context);
+	async ({ context, request }, next) => {
+		try {
+			require(context);
+		} catch (refused) {
+			throw await withPosted(refused, request);
+		}
 		return next();
 	};
 export const deskGuard = guard(requireAssociate);

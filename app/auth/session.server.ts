@@ -1,5 +1,5 @@
 import { createHash, randomBytes } from "node:crypto";
-import { createContext, createSessionStorage, type MiddlewareFunction, type Session } from "react-router";
+import { createContext, createCookie, createSessionStorage, type MiddlewareFunction, type Session } from "react-router";
 import { env } from "#app/lib/env.server.ts";
 import { scopedTransaction } from "./scope.server.ts";
 
@@ -13,18 +13,21 @@ export const sessionDays = 14;
 
 let storage: ReturnType<typeof createStorage> | undefined;
 
-function createStorage() {
+function sessionCookie() {
 	const secure = env().BASE_URL.startsWith("https:");
+	return createCookie(secure ? "__Host-tallygrove" : "tallygrove", {
+		httpOnly: true,
+		sameSite: "lax",
+		secure,
+		path: "/",
+		secrets: [env().SESSION_SECRET],
+		maxAge: sessionDays * 86_400,
+	});
+}
+
+function createStorage() {
 	return createSessionStorage<SessionData, FlashData>({
-		cookie: {
-			name: secure ? "__Host-tallygrove" : "tallygrove",
-			httpOnly: true,
-			sameSite: "lax",
-			secure,
-			path: "/",
-			secrets: [env().SESSION_SECRET],
-			maxAge: sessionDays * 86_400,
-		},
+		cookie: sessionCookie(),
 		// The cookie holds a random id; the table holds its hash, so that a stolen table opens no session.
 		async createData(data) {
 			const id = randomBytes(32).toString("base64url");
@@ -72,6 +75,16 @@ async function write(id: string, data: SessionData & FlashData): Promise<void> {
 			.onConflict((conflict) => conflict.column("session_hash").doUpdateSet(columns))
 			.execute(),
 	);
+}
+
+/** Whose session it is or was, also after its end. It gives no rights. */
+export async function findSessionPerson(cookies: string | null): Promise<string | undefined> {
+	const id: unknown = await sessionCookie().parse(cookies);
+	if (typeof id !== "string") return undefined;
+	const row = await scopedTransaction({ kind: "none" }, (trx) =>
+		trx.selectFrom("auth.session").select("person_id").where("session_hash", "=", hash(id)).executeTakeFirst(),
+	);
+	return row?.person_id ?? undefined;
 }
 
 export const sessionContext = createContext<VisitorSession>();

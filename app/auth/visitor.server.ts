@@ -1,11 +1,18 @@
 import { createContext, type MiddlewareFunction } from "react-router";
 import { grantHolds } from "./grant-holds.server.ts";
 import type { Grants, Person } from "./viewer.ts";
+import { senderOf } from "./holder.server.ts";
 import { scopedTransaction, type Trx } from "./scope.server.ts";
 import { sessionContext } from "./session.server.ts";
 
 type OpenLink = { personalLinkId: string; surveyId: string; operationId: string };
-export type Visitor = { person: Person | null; grants: Grants; link: OpenLink | null };
+export type Visitor = {
+	person: Person | null;
+	grants: Grants;
+	link: OpenLink | null;
+	/** Whose page sends this, by `holderOf`, where the page says so. */
+	sender?: string | null;
+};
 
 const nobody: Visitor = {
 	person: null,
@@ -16,7 +23,7 @@ const nobody: Visitor = {
 export const visitorContext = createContext<Visitor>(nobody);
 
 /** Looks up person, grants and open link on every request, so that a revoked grant ends at once. */
-export const visitorMiddleware: MiddlewareFunction<Response> = async ({ context }, next) => {
+export const visitorMiddleware: MiddlewareFunction<Response> = async ({ context, request }, next) => {
 	const session = context.get(sessionContext);
 	const personId = session.get("personId");
 	const personalLinkId = session.get("personalLinkId");
@@ -24,6 +31,7 @@ export const visitorMiddleware: MiddlewareFunction<Response> = async ({ context 
 		const visitor = await scopedTransaction({ kind: "network" }, async (trx) => ({
 			...(personId ? await findPerson(trx, personId) : nobody),
 			link: personalLinkId ? await findOpenLink(trx, personalLinkId) : null,
+			sender: request.method === "POST" ? senderOf(request) : null,
 		}));
 		context.set(visitorContext, visitor);
 	}

@@ -2,6 +2,7 @@ import type { ButtonHTMLAttributes, ReactNode } from "react";
 import { useTranslation } from "react-i18next";
 import { Link, type LinkProps } from "react-router";
 import { classes } from "./classes.ts";
+import { useHeldPost } from "./use-held-post.ts";
 
 export type ButtonKind = "primary" | "secondary" | "quiet" | "danger";
 /** A small one is as large as any other where fingers press it. */
@@ -40,8 +41,11 @@ type ButtonProps = Look & { busy?: boolean; children: ReactNode } & Pick<
 	>;
 
 /** A busy button stays in place and in focus; a second tap does nothing. */
-export function Button({ kind, size, busy, children, type = "submit", onClick, ...rest }: ButtonProps) {
+export function Button({ kind, size, busy: isSending, children, type = "submit", onClick, ...rest }: ButtonProps) {
 	const { t } = useTranslation();
+	// What waits for somebody to sign in can be sent again.
+	const isHeld = useHeldPost() !== null;
+	const busy = isSending && !isHeld;
 	return (
 		<button
 			{...rest}

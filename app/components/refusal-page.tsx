@@ -1,8 +1,9 @@
 import { useTranslation } from "react-i18next";
 import { isRouteErrorResponse, Link, useLocation } from "react-router";
 import { helpContact } from "#app/lib/help-contact.ts";
-import { isRefusal, type RefusalCode } from "#app/lib/refusal.ts";
+import { isRefusal, type Refusal, type RefusalCode } from "#app/lib/refusal.ts";
 import { Button, ButtonLink } from "./button.tsx";
+import { HeldForm } from "./held-notice.tsx";
 import { Page } from "./page.tsx";
 
 type ErrorCode = RefusalCode | "unexpected";
@@ -10,7 +11,8 @@ type ErrorCode = RefusalCode | "unexpected";
 /** Why a page cannot be shown, in the reader's words, and what to do next. */
 export function RefusalPage({ error }: { error: unknown }) {
 	const { t } = useTranslation();
-	const { code, role } = readError(error);
+	const { code, role, posted } = readError(error);
+	if (posted) return <HeldForm why={code === "other_person" ? "other" : "over"} posted={posted} />;
 	const values = { email: helpContact.email, role: role ? t(`role.needed.${role}`) : "" };
 	return (
 		<Page title={t(`error.${code}.title`)} width="narrow" lead={t(`error.${code}.body`, values)}>
@@ -20,7 +22,7 @@ export function RefusalPage({ error }: { error: unknown }) {
 }
 
 /** The refusal in what was thrown; other answers by status; all else is a bug, told as one calm sentence. */
-export function readError(error: unknown): { code: ErrorCode; role?: string } {
+export function readError(error: unknown): Omit<Refusal, "code"> & { code: ErrorCode } {
 	if (!isRouteErrorResponse(error)) return { code: "unexpected" };
 	if (isRefusal(error.data)) return error.data;
 	const byStatus: Record<number, RefusalCode> = {

@@ -10,6 +10,8 @@ export type ShellData = {
 	toast: ToastData | null;
 	visitor: {
 		displayName: string;
+		/** Tells this person's pages from those of others. */
+		holder: string;
 		areas: { desk: boolean; network: boolean; orchard: boolean; dataroom: boolean };
 	} | null;
 };

@@ -2,6 +2,7 @@ import type { ReactNode } from "react";
 import { useTranslation } from "react-i18next";
 import { classes } from "./classes.ts";
 import { DemoBanner } from "./demo-banner.tsx";
+import { HeldNotice } from "./held-notice.tsx";
 import { useShellData } from "./shell-data.ts";
 import { SiteFooter } from "./site-footer.tsx";
 import { SiteHeader } from "./site-header.tsx";
@@ -30,6 +31,7 @@ export function Sheet({ header, footer, width = "wide", children }: SheetProps) 
 			{header}
 			<Toast toast={shell?.toast ?? null} />
 			<main id="content" tabIndex={-1} className="px-gutter">
+				<HeldNotice />
 				{children}
 			</main>
 			{footer}

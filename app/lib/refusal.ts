@@ -8,6 +8,7 @@ const statusOf = {
 	link_session_over: 401,
 	survey_closed: 410,
 	role_needed: 403,
+	other_person: 412,
 	page_not_found: 404,
 	survey_not_found: 404,
 	form_not_found: 404,
@@ -29,9 +30,11 @@ const statusOf = {
 	service_away: 503,
 } as const;
 export type RefusalCode = keyof typeof statusOf;
-export type Refusal = { code: RefusalCode; role?: string };
+/** A form as it was sent, and whose page it was sent from. */
+export type PostedForm = { holder: string; fields: { place: number; name: string; value: string }[] };
+export type Refusal = { code: RefusalCode; role?: string; posted?: PostedForm | "lost" };
 
-/** What a loader or action throws to refuse; the error page shows it in the reader's words. Holds nothing secret. */
+/** What a loader or action throws to refuse; the error page shows it in the reader's words. Holds nothing secret from its reader. */
 export function refusal(code: RefusalCode, detail: Omit<Refusal, "code"> = {}) {
 	return data({ code, ...detail } satisfies Refusal, { status: statusOf[code] });
 }

@@ -1,7 +1,7 @@
 import type { Browser, Page } from "playwright-core";
 import { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
-import { axeFindings, openBrowser, openPage, phone, signInAsAssociate } from "#tests/helpers/browser.ts";
+import { axeFindings, openBrowser, openPage, phone, signIn, signInAsAssociate } from "#tests/helpers/browser.ts";
 import { type Stack, startStack } from "#tests/helpers/stack.ts";
 
 let stack: Stack;
@@ -131,6 +131,43 @@ test("two that are one are compared, merged, and made two again", async () => {
 	await page.getByText("They are two growers again.").waitFor();
 	await page.goto(`${stack.baseUrl}/desk/growers?q=quail`);
 	expect(await page.locator("tbody tr").count()).toBe(2);
+});
+
+test("what was typed stands, and is sent after all, when the session has ended meanwhile", async () => {
+	const page = associate;
+	await page.goto(`${stack.baseUrl}/desk/growers?q=otter`);
+	await press(page, "link", "Otter Slough Fruit");
+	await page.locator("summary", { hasText: "Note a contact" }).focus();
+	await page.keyboard.press("Enter");
+	await page.fill("[name=note]", "Rang while signed out");
+	const owner = new Client({ connectionString: stack.database.ownerUrl });
+	await owner.connect();
+	await owner.query("delete from auth.session");
+	const noted = async () => (await owner.query("select from collect.contact where note ~ 'signed out'")).rowCount;
+	await press(page, "button", "Note it");
+	const notice = page.getByRole("alert");
+	await notice.getByText("You are signed out, and nothing was saved").waitFor();
+	await expect.poll(() => notice.evaluate((box) => box === document.activeElement)).toBe(true);
+	expect(await page.inputValue("[name=note]")).toBe("Rang while signed out");
+	await fits(page);
+	expect(await noted()).toBe(0);
+
+	for (const [who, then] of [
+		["Marit Osgood", "Somebody else is signed in now, and nothing was saved"],
+		["Del Fenwick", "The contact is noted."],
+	] as const) {
+		const opened = page.context().waitForEvent("page");
+		await press(page, "link", /opens a new tab/);
+		const tab = await opened;
+		if (new URL(tab.url()).pathname === "/sign-out") await tab.getByRole("button", { name: "Sign out" }).last().click();
+		await signIn(tab, stack.baseUrl, who);
+		await tab.close();
+		await press(page, "button", "Send it again");
+		await page.getByText(then).waitFor();
+		expect(await noted()).toBe(who === "Del Fenwick" ? 1 : 0);
+	}
+	expect(await notice.count()).toBe(0);
+	await owner.end();
 });
 
 test("the list and a file work in Spanish on a phone without scripts", async () => {

@@ -1,6 +1,7 @@
 import { type RefObject, useEffect, useRef, useState } from "react";
 import { useTranslation } from "react-i18next";
 import { useFetcher } from "react-router";
+import { useHeldPost } from "#app/components/use-held-post.ts";
 import { useFormat } from "#app/i18n/use-format.ts";
 
 /** What the page's action answers to what was saved by itself. */
@@ -20,8 +21,9 @@ export function Autosave({ form }: { form: RefObject<HTMLFormElement | null> }) 
 	const [savedAt, setSavedAt] = useState<Date | null>(null);
 	const busy = useRef(false);
 	const pressed = useRef<HTMLElement | null>(null);
-	busy.current = fetcher.state !== "idle";
-	const failed = fetcher.data?.conflict || (fetcher.data?.problems?.length ?? 0) > 0;
+	const held = useHeldPost();
+	busy.current = fetcher.state !== "idle" && !held;
+	const failed = held || fetcher.data?.conflict || (fetcher.data?.problems?.length ?? 0) > 0;
 
 	useEffect(() => {
 		const element = form.current;
@@ -57,6 +59,14 @@ export function Autosave({ form }: { form: RefObject<HTMLFormElement | null> }) 
 	}, [form]);
 
 	useEffect(() => {
+		if (!held) return;
+		// Its answer never comes. A button that waited for it is pressed, and says what holds it.
+		fetcher.reset();
+		pressAfter(form, pressed);
+		// oxlint-disable-next-line react-hooks/exhaustive-deps
+	}, [held]);
+
+	useEffect(() => {
 		const { data } = fetcher;
 		if (fetcher.state !== "idle" || !data?.autosaved) return;
 		const count = form.current?.elements.namedItem("edit");
@@ -64,9 +74,7 @@ export function Autosave({ form }: { form: RefObject<HTMLFormElement | null> }) 
 			count.value = String(data.edit);
 			setSavedAt(new Date());
 		}
-		const button = pressed.current;
-		pressed.current = null;
-		if (button) form.current?.requestSubmit(button);
+		pressAfter(form, pressed);
 	}, [fetcher, form]);
 
 	return (
@@ -74,4 +82,11 @@ export function Autosave({ form }: { form: RefObject<HTMLFormElement | null> }) 
 			{failed ? t("autosave.failed") : savedAt ? t("autosave.saved", { moment: format.moment(savedAt) }) : ""}
 		</output>
 	);
+}
+
+/** Presses the button that was pressed while a save was on its way. */
+function pressAfter(form: RefObject<HTMLFormElement | null>, pressed: RefObject<HTMLElement | null>): void {
+	const button = pressed.current;
+	pressed.current = null;
+	if (button) form.current?.requestSubmit(button);
 }

@@ -1,6 +1,6 @@
-import { createHash } from "node:crypto";
 import type { RouterContextProvider } from "react-router";
 import { requireGrower } from "#app/auth/guard.server.ts";
+import { holderOf } from "#app/auth/holder.server.ts";
 import { type Answering, findAnswering } from "#app/collect/responses.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -18,13 +18,11 @@ export async function getAnswering(context: Readonly<RouterContextProvider>, pla
 	const answering = await grower.transaction((trx) => findAnswering(trx, grower.viewer, place));
 	if (!answering) throw refusal("survey_not_found");
 	if (!answering.isOpen && !answering.isLate) throw refusal("survey_closed");
-	return { ...answering, holder: holderOf(grower.viewer) };
+	return { ...answering, holder: holderOfGrower(grower.viewer) };
 }
 
-/** Tells sessions of one person or link from those of another, and nothing else. */
-function holderOf({ link, person }: Grower): string {
-	const who = link ? `link ${link.personalLinkId}` : `person ${person?.personId}`;
-	return createHash("sha256").update(who).digest("base64url").slice(0, 16);
+function holderOfGrower({ link, person }: Grower): string {
+	return link ? holderOf("link", link.personalLinkId) : holderOf("person", String(person?.personId));
 }
 
 /** The day it is at the operation, for answers that must not lie in the future. */
