@@ -52,6 +52,25 @@ test("a district redrawn by the coordinator stays redrawn when the reference dat
 	}
 });
 
+test("whatever points to an owner, an operation or a planting is found by an index when one is deleted", async () => {
+	await using database = await createTestDatabase();
+	const db = connect(database.ownerUrl, { max: 1 });
+	try {
+		const pointing = sql`select format('%s (%s)', c.conrelid::regclass, a.attname) as of, exists (
+				select from pg_index i where i.indrelid = c.conrelid and i.indkey[0] = a.attnum
+					and (i.indpred is null
+						or pg_get_expr(i.indpred, i.indrelid) = format('(%s IS NOT NULL)', a.attname))) as indexed
+			from pg_constraint c join pg_attribute a on a.attrelid = c.conrelid and a.attnum = c.conkey[1]
+			where c.contype = 'f' and c.confrelid in
+				('directory.owner'::regclass, 'directory.operation'::regclass, 'directory.planting'::regclass)`;
+		const { rows } = await sql<{ of: string; indexed: boolean }>`${pointing} order by 1`.execute(db);
+		expect(rows.length).toBeGreaterThan(10);
+		expect(rows.filter(({ indexed }) => !indexed).map(({ of }) => of)).toEqual([]);
+	} finally {
+		await db.destroy();
+	}
+});
+
 /** Every column, constraint and right of the product's schemas, and what the reference data came to. */
 async function describe(ownerUrl: string) {
 	const db = connect(ownerUrl, { max: 1 });
