@@ -106,9 +106,11 @@ export type GoingOn = { by?: HTMLElement | null; values?: StepValues; goneOn?: b
 /** Records what the boxes hold, once. @returns whether it was recorded, or had been. */
 export function record(ask: AskPage, { by = null, goneOn = false, values: posted }: GoingOn = {}): Promise<boolean> {
 	const values = posted ?? valuesIn(ask.form, by);
-	const text = JSON.stringify(values);
+	// What a button confirmed stays recorded as long as the boxes do not change.
+	const { confirm, ...boxes } = values;
+	const text = JSON.stringify(boxes);
 	const work = async () => {
-		if (text === ask.recorded && !goneOn) return !ask.twice;
+		if (text === ask.recorded && confirm === undefined && !goneOn) return !ask.twice;
 		const typed = typedNow(ask, values);
 		let outcome = "typed";
 		const held = await ask.store.change(ask.page.responseId, (before) => {
