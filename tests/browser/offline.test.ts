@@ -327,6 +327,7 @@ test("going on while the server is away is answered by the phone, and by the ser
 	await stack.start("server");
 	// The phone is told of its signal; that it tries by itself, too, is waited for where a server was killed.
 	await page.evaluate(() => window.dispatchEvent(new Event("online")));
+	await page.getByText("There is no signal. You can go on", { exact: false }).waitFor({ state: "hidden" });
 	await expect
 		.poll(() => heldByServer(owner, grower.place.surveyId), { timeout: 60_000 })
 		.toMatchObject({ harvested: 4000 });

@@ -1,4 +1,4 @@
-import { type ReactNode, useEffect } from "react";
+import { type ReactNode, useEffect, useSyncExternalStore } from "react";
 import { useTranslation } from "react-i18next";
 import { Link, Outlet, redirectDocument, type RouteObject, useActionData, useLoaderData } from "react-router";
 import { Mark } from "#app/components/mark.tsx";
@@ -12,7 +12,7 @@ import { listenForHiding } from "../ask-leaving.ts";
 import { startAskPage } from "../ask-page.ts";
 import { readPage } from "../page-data.ts";
 import { startPhotoPage } from "../photos/photo-page.ts";
-import { here } from "./here.ts";
+import { here, onReachable } from "./here.ts";
 import * as loaders from "./loaders.ts";
 
 export const routes: RouteObject[] = [
@@ -35,6 +35,7 @@ export const routes: RouteObject[] = [
 
 function Frame() {
 	const { t } = useTranslation("grower");
+	const isBack = useSyncExternalStore(onReachable, () => here.reachable);
 	const header: ReactNode = (
 		<header className="double-rule no-print flex items-center gap-2 px-gutter py-1">
 			<Mark className="size-9" />
@@ -48,9 +49,7 @@ function Frame() {
 	);
 	return (
 		<Sheet header={header} footer={footer} width="narrow">
-			<output className="block">
-				<Notice tone="attention">{t("offline.notice")}</Notice>
-			</output>
+			<output className="block">{!isBack && <Notice tone="attention">{t("offline.notice")}</Notice>}</output>
 			<Outlet />
 		</Sheet>
 	);

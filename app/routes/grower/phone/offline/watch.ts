@@ -4,7 +4,7 @@ import { askToSendLater } from "../send-later.ts";
 import { sendPhotos } from "../send-photos.ts";
 import { sendWaiting } from "../send.ts";
 import type { Pack } from "../pack.ts";
-import { here } from "./here.ts";
+import { here, setReachable } from "./here.ts";
 
 const pause = 20_000;
 
@@ -14,12 +14,8 @@ const pause = 20_000;
  */
 export function watchForSignal(pack: Pack): void {
 	const look = async () => {
-		if (!navigator.onLine) {
-			here.reachable = false;
-			return;
-		}
-		const answer = await fetch("/healthz", { cache: "no-store" }).catch(() => null);
-		here.reachable = answer?.ok ?? false;
+		const answer = navigator.onLine ? await fetch("/healthz", { cache: "no-store" }).catch(() => null) : null;
+		setReachable(answer?.ok ?? false);
 		if (!here.reachable) return;
 		await sendWaiting(here.store, pack.responseId, () => {});
 		await sendPhotos(here.store, pack.responseId, () => {});
