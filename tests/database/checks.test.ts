@@ -1,9 +1,23 @@
 import type { Client } from "pg";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import type { Associate } from "#app/auth/viewer.ts";
+import { closeSurvey } from "#app/collect/survey-opening.server.ts";
+import { FindingsQuery } from "#app/review/findings.schema.ts";
+import { countOpenFindings, listFindings } from "#app/review/findings.server.ts";
+import { viewFinding } from "#app/routes/desk/parts/checks/finding-view.server.ts";
+import { merge, undoMerge } from "#app/routes/desk/parts/merging/merge-steps.server.ts";
 import { createTestDatabase } from "#tests/helpers/database.ts";
-import { addOrchards, aSeasonEarlier, answer, answerAll, check, findingsOf, orchards } from "./checks-fixture.ts";
-import { addPerson, connectOwner, loadPlaces, useDatabase } from "./surveys-fixture.ts";
+import {
+	addOrchards,
+	aSeasonEarlier,
+	answer,
+	answerAll,
+	check,
+	findingsOf,
+	oddSurvey,
+	orchards,
+} from "./checks-fixture.ts";
+import { addOperation, addPerson, asDesk, connectOwner, loadPlaces, useDatabase } from "./surveys-fixture.ts";
 
 let database: Awaited<ReturnType<typeof createTestDatabase>>;
 let owner: Client;
@@ -78,5 +92,30 @@ describe("findings", () => {
 		await answer({ surveyId, operationId }, plantingId, now[9]!);
 		await check(surveyId);
 		expect((await kindsOf(surveyId, operationId)).map(([, , outcome]) => outcome)).toEqual([null, null]);
+	});
+
+	test("of a grower that goes into another one stay as they are, with their planting, and so when it is undone", async () => {
+		const { surveyId, operationId, plantingId, findings } = await oddSurvey(owner, iowa);
+		const [findingId] = findings.map((one) => one.edit_finding_id);
+		await asDesk(iowa, (trx) => closeSurvey(trx, iowa, surveyId));
+		const seen = () =>
+			asDesk(iowa, async (trx) => ({
+				queue: await listFindings(trx, iowa, surveyId, FindingsQuery.parse({})),
+				open: (await countOpenFindings(trx, iowa)).get(surveyId),
+				one: await viewFinding(trx, iowa, { surveyId, findingId: findingId! }),
+				kept: await findingsOf(owner, surveyId, operationId),
+			}));
+		const before = await seen();
+		expect(before).toMatchObject({ open: 2, queue: { total: 2 }, one: { answers: [{ planting: expect.anything() }] } });
+
+		const ids = { keptId: await addOperation(owner, { state: "19" }), droppedId: operationId };
+		const merged = await asDesk(iowa, (trx) => merge(trx, iowa, ids, { take: [], plantingIds: [plantingId] }));
+		expect(merged).toBe("merged");
+		await check(surveyId);
+		expect(await seen()).toEqual(before);
+		const { rows } = await owner.query("select merge_id from directory.merge where dropped_id = $1", [operationId]);
+		expect(await asDesk(iowa, (trx) => undoMerge(trx, iowa, rows[0].merge_id))).toBe("undone");
+		await check(surveyId);
+		expect(await seen()).toEqual(before);
 	});
 });
