@@ -26,6 +26,7 @@ import { getForm, getOwnForm, makeChange, type NotChanged } from "./parts/forms/
 import { NotChangedNotice } from "./parts/forms/not-changed.tsx";
 import { QuestionActions } from "./parts/forms/question-actions.tsx";
 import { changeQuestion, placeAfter, QuestionIntent } from "./parts/forms/question-change.ts";
+import { QuestionFacts } from "./parts/forms/question-facts.tsx";
 import { QuestionFields, useQuestionLabels } from "./parts/forms/question-fields.tsx";
 
 export async function loader({ context, params }: Route.LoaderArgs) {
@@ -82,13 +83,15 @@ export default function FormQuestion({ loaderData, actionData, params }: Route.C
 	const preview = { ...screen, questions: screen.questions.map((one) => (one === question ? shown : one)) };
 	return (
 		<EditorFrame formId={params.formId} draft={draft} preview={mayEdit ? { ...preview, questions: [shown] } : preview}>
-			{mayEdit && (
+			{mayEdit ? (
 				<QuestionForm
 					key={question.key}
 					{...loaderData}
 					sent={actionData?.of === question.key ? actionData : undefined}
 					onTyped={(now) => setTyped({ of: question, question: now })}
 				/>
+			) : (
+				<QuestionFacts draft={draft} question={question} />
 			)}
 		</EditorFrame>
 	);
