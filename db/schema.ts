@@ -297,6 +297,14 @@ export interface CollectFrameOperation {
   county_fips: string;
   disposition: Generated<string>;
   disposition_at: Generated<Timestamp>;
+  /**
+   * an invitation was sent, whatever became of it
+   */
+  invitation_went_out: Generated<boolean>;
+  /**
+   * an invitation is on its way or was sent: one that was given up invited nobody
+   */
+  is_invited: Generated<boolean>;
   operation_id: string;
   owner_id: string;
   size_class: string;

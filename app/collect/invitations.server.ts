@@ -2,7 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { logEvent } from "#app/auth/event-log.server.ts";
-import { conditionsOfAll, conditionsOfEach, lastWave, queueWave } from "./mail-waves.server.ts";
+import { lastWave, mailConditions, queueWave } from "./mail-waves.server.ts";
 import { findSurvey } from "./surveys.server.ts";
 
 /**
@@ -11,52 +11,66 @@ import { findSurvey } from "./surveys.server.ts";
  * @param only of these operations alone.
  */
 export async function countMailings(trx: Trx, viewer: Associate, surveyId: string, only?: string[]) {
-	const { hasSent, isAwaited, isInvited, invitationWentOut, hasNoAddress } = conditionsOfAll(surveyId);
-	const told = trx
-		.selectFrom("collect.frame_operation as f")
-		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
-		.where("f.survey_id", "=", surveyId)
-		.where("f.state_fips", "in", viewer.stateFips)
+	const row = await inFrame(trx, viewer, surveyId)
 		.$if(only !== undefined, (rows) => rows.where(sql<boolean>`f.operation_id = any (${only}::uuid[])`))
+		.where(isAwaited)
 		.select([
-			isAwaited.as("is_awaited"),
-			isInvited.as("is_invited"),
-			invitationWentOut.as("went_out"),
-			sql<boolean>`(${hasNoAddress} and not ${hasSent})`.as("without_address"),
-		])
-		// Keeps each of them from being asked as often as it is counted by.
-		.offset(0);
-	const row = await trx
-		.selectFrom(told.as("t"))
-		.select([
-			sql<number>`count(*) filter (where is_awaited and not is_invited)`.as("toInvite"),
-			sql<number>`count(*) filter (where is_awaited and went_out)`.as("toRemind"),
-			sql<number>`count(*) filter (where is_invited)`.as("invited"),
-			sql<number>`count(*) filter (where without_address)`.as("withoutAddress"),
+			sql<number>`count(*) filter (where ${isUninvited})`.as("toInvite"),
+			sql<number>`count(*) filter (where ${wentOut})`.as("toRemind"),
 		])
 		.executeTakeFirstOrThrow();
 	return { ...row, reminderWave: (await lastWave(trx, surveyId, "reminder")) + 1 };
 }
 
-/** Of the same counts those that have somebody do something today, without going through who was invited and has answered. */
+/** How many have an invitation, on its way or sent and not given up. */
+export async function countInvited(trx: Trx, viewer: Associate, surveyId: string): Promise<number> {
+	const ofFrame = trx
+		.selectFrom("collect.frame_operation as f")
+		.where("f.survey_id", "=", surveyId)
+		.where("f.state_fips", "in", viewer.stateFips)
+		.where(isUninvited);
+	// Those without one are fewer, once invitations went out, and all together are counted already.
+	const { n } = await trx
+		.selectFrom("collect.frame_count")
+		.where("survey_id", "=", surveyId)
+		.where("crop_key", "=", "all")
+		.where("state_fips", "in", viewer.stateFips)
+		.select((eb) => [
+			sql<number>`coalesce(sum(operations), 0)::int - ${ofFrame.select(eb.fn.countAll().as("n"))}`.as("n"),
+		])
+		.executeTakeFirstOrThrow();
+	return n;
+}
+
+/** Of those who have not answered, how many wait for a first mail, and how many cannot get one. */
 export async function countToWrite(trx: Trx, viewer: Associate, surveyId: string) {
-	const inFrame = trx
+	const toInvite = await inFrame(trx, viewer, surveyId)
+		.where(isAwaited)
+		.where(isUninvited)
+		.select(count)
+		.executeTakeFirstOrThrow();
+	return { toInvite: toInvite.n, withoutAddress: await countWithoutAddress(trx, viewer, surveyId) };
+}
+
+/** How many have not answered and cannot be written to by mail. */
+export async function countWithoutAddress(trx: Trx, viewer: Associate, surveyId: string): Promise<number> {
+	const { n } = await inFrame(trx, viewer, surveyId)
+		.where(hasNoAddress)
+		.where(isIncomplete)
+		.select(count)
+		.executeTakeFirstOrThrow();
+	return n;
+}
+
+const { isAwaited, isUninvited, wentOut, isIncomplete, hasNoAddress } = mailConditions;
+const count = sql<number>`count(*)`.as("n");
+
+const inFrame = (trx: Trx, viewer: Associate, surveyId: string) =>
+	trx
 		.selectFrom("collect.frame_operation as f")
 		.innerJoin("directory.operation as o", "o.operation_id", "f.operation_id")
 		.where("f.survey_id", "=", surveyId)
-		.where("f.state_fips", "in", viewer.stateFips)
-		.select(sql<number>`count(*)`.as("n"));
-	const { isAwaited, isInvited, hasNoAddress, hasSent } = conditionsOfEach;
-	const { n: toInvite } = await inFrame
-		.where(isAwaited)
-		.where(sql<boolean>`not ${isInvited}`)
-		.executeTakeFirstOrThrow();
-	const { n: withoutAddress } = await inFrame
-		.where(hasNoAddress)
-		.where(sql<boolean>`not ${hasSent}`)
-		.executeTakeFirstOrThrow();
-	return { toInvite, withoutAddress };
-}
+		.where("f.state_fips", "in", viewer.stateFips);
 
 /** Queues an invitation to everyone in the viewer's states who is awaited and has none that went out or still waits. */
 export async function sendInvitations(trx: Trx, viewer: Associate, surveyId: string, only?: string[]) {

@@ -1,11 +1,18 @@
 import { expect, test } from "vitest";
-import { countMailings, countToWrite, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
+import {
+	countInvited,
+	countMailings,
+	countToWrite,
+	countWithoutAddress,
+	sendInvitations,
+	sendReminders,
+} from "#app/collect/invitations.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
 import { createSurvey } from "#app/collect/surveys.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { addOperation, answerFor, asDesk, draftOf, openSurveysDatabase } from "./surveys-fixture.ts";
 
-// Whom to write to is counted over a whole frame at once, and decided one by one when the mails are queued: both must agree.
+// Whom to write to is counted off what the frame keeps of its mails: it must agree with who gets one and with the mails.
 
 const { owner, iowa, wisconsin, both } = await openSurveysDatabase();
 
@@ -37,7 +44,9 @@ const surveyId = await asDesk(both, async (trx) => {
 async function expectAgreed() {
 	for (const viewer of [iowa, wisconsin, both]) {
 		const counts = await asDesk(viewer, (trx) => countMailings(trx, viewer, surveyId));
-		const { reminderWave, toInvite, toRemind, invited, withoutAddress } = counts;
+		const { reminderWave, toInvite, toRemind } = counts;
+		const invited = await asDesk(viewer, (trx) => countInvited(trx, viewer, surveyId));
+		const withoutAddress = await asDesk(viewer, (trx) => countWithoutAddress(trx, viewer, surveyId));
 		const today = await asDesk(viewer, (trx) => countToWrite(trx, viewer, surveyId));
 		expect(today).toEqual({ toInvite, withoutAddress });
 		expect(toInvite).toBe(await wouldQueue(viewer, sendInvitations));
@@ -72,7 +81,9 @@ test("counts are of those who would be written to, whatever became of them", asy
 	await owner.query("update collect.frame_operation set disposition = 'refused' where operation_id = $1", [ids[7]]);
 	await expectAgreed();
 	const counts = await asDesk(both, (trx) => countMailings(trx, both, surveyId));
-	expect(counts).toMatchObject({ invited: 15, withoutAddress: 3, reminderWave: 1 });
+	expect(counts.reminderWave).toBe(1);
+	expect(await asDesk(both, (trx) => countInvited(trx, both, surveyId))).toBe(15);
+	expect(await asDesk(both, (trx) => countWithoutAddress(trx, both, surveyId))).toBe(3);
 	expect(counts.toInvite).toBeGreaterThan(2);
 	expect(counts.toRemind).toBeGreaterThan(2);
 });
@@ -93,4 +104,58 @@ test("a mailing has the state that its operation has in the frame, and nobody gi
 	expect(await tell()).toEqual(before);
 	await owner.query("update collect.frame_operation set state_fips = '55' where operation_id = $1", [ids[1]]);
 	expect(await tell()).toEqual({ ...before, iowa: before.iowa - 1 });
+});
+
+/** What a frame keeps of its invitations must be what its mailings say. */
+async function expectKept() {
+	const rows = async () =>
+		(
+			await owner.query(
+				`select operation_id, is_invited, invitation_went_out from collect.frame_operation where survey_id = $1 order by 1`,
+				[surveyId],
+			)
+		).rows;
+	const kept = await rows();
+	await owner.query("select collect.recount_invitations($1)", [surveyId]);
+	expect(kept).toEqual(await rows());
+	return kept as { is_invited: boolean; invitation_went_out: boolean }[];
+}
+
+test("a frame keeps what its invitations came to, whoever writes at once, and nobody else says it", async () => {
+	const tell = async () => {
+		const kept = await expectKept();
+		return [kept.filter((row) => row.is_invited).length, kept.filter((row) => row.invitation_went_out).length];
+	};
+	expect(await tell()).toEqual([15, 12]);
+	const given = async (set: string, of: string[]) =>
+		owner.query(
+			`update collect.mailing set ${set} where kind = 'invitation' and wave = 1 and operation_id = any ($1)`,
+			[of],
+		);
+	const again = (id: string) =>
+		asDesk(both, (trx) =>
+			trx
+				.insertInto("collect.mailing")
+				.values({ survey_id: surveyId, operation_id: id, kind: "invitation", wave: 2 })
+				.execute(),
+		);
+	const upTo = (end: number, from = 0) => ids.slice(from, end);
+	const failed = (of: string[]) =>
+		asDesk(both, (trx) =>
+			trx
+				.updateTable("collect.mailing")
+				.set({ failed_at: new Date(), failure: "refused" })
+				.where("kind", "=", "invitation")
+				.where("wave", "=", 1)
+				.where("operation_id", "in", of)
+				.execute(),
+		);
+	// A second invitation comes as the first is given up, of the same growers and of others.
+	await Promise.all([failed(upTo(6)), ...upTo(8).map(again), failed(upTo(8, 6)), failed(upTo(12, 8))]);
+	expect(await tell()).toEqual([11, 12]);
+	await given("failed_at = null, failure = null", upTo(12));
+	await owner.query("delete from collect.mailing where kind = 'invitation' and operation_id = $1", [ids[0]]);
+	expect(await tell()).toEqual([14, 11]);
+	const saysSo = asDesk(both, (trx) => trx.updateTable("collect.frame_operation").set({ is_invited: true }).execute());
+	await expect(saysSo).rejects.toThrow("permission denied");
 });

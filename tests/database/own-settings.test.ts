@@ -2,7 +2,7 @@ import type { Client } from "pg";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { scopedTransaction } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
-import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
+import { countInvited, countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
 import { sendNewLink } from "#app/collect/new-link.server.ts";
 import { listOwnConsents } from "#app/collect/own-consents.server.ts";
 import { findMailing, reasonNotToSend } from "#app/collect/survey-mailing.server.ts";
@@ -75,7 +75,8 @@ test("who wants no survey mail is neither invited nor reminded nor counted, and 
 	// Decided before the grower said no, and not yet sent.
 	await save(operationId, settings({ mailWanted: false }));
 	expect(await reasons()).toEqual(["invitation: not_wanted"]);
-	expect(await counts()).toMatchObject({ toInvite: 0, toRemind: 0, invited: 1 });
+	expect(await counts()).toMatchObject({ toInvite: 0, toRemind: 0 });
+	expect(await asDesk(iowa, (trx) => countInvited(trx, iowa, surveyId))).toBe(1);
 	expect(await asDesk(iowa, (trx) => sendReminders(trx, iowa, surveyId, 1))).toEqual({ queued: 0 });
 
 	await typeStep(grower, place, step, pounds(40, 4000, 4000));

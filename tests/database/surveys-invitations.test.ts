@@ -2,7 +2,7 @@ import { sql } from "kysely";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import type { Client } from "pg";
 import type { Associate } from "#app/auth/viewer.ts";
-import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
+import { countMailings, countToWrite, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
 import { sendNewLink } from "#app/collect/new-link.server.ts";
 import { createPersonalLink, findLink } from "#app/collect/personal-link.server.ts";
 import { openSurvey } from "#app/collect/survey-opening.server.ts";
@@ -80,10 +80,7 @@ test("a rolled-back invitation leaves neither mailing nor job", async () => {
 });
 
 test("pressing three times at once invites each grower of the viewer's states once", async () => {
-	expect(await asDesk(iowa, (trx) => countMailings(trx, iowa, surveyId))).toMatchObject({
-		toInvite: 1,
-		withoutAddress: 2,
-	});
+	expect(await asDesk(iowa, (trx) => countToWrite(trx, iowa, surveyId))).toEqual({ toInvite: 1, withoutAddress: 2 });
 	const before = await jobs();
 	const outcomes = await Promise.all([invite(iowa), invite(iowa), invite(iowa)]);
 	expect(outcomes.reduce((sum, outcome) => sum + (outcome as { queued: number }).queued, 0)).toBe(1);

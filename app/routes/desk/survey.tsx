@@ -8,7 +8,13 @@ import type { Trx } from "#app/auth/scope.server.ts";
 import { sessionContext } from "#app/auth/session.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { countLeftOut, listFrameParts } from "#app/collect/frame-parts.server.ts";
-import { countMailings, sendInvitations, sendReminders } from "#app/collect/invitations.server.ts";
+import {
+	countInvited,
+	countMailings,
+	countWithoutAddress,
+	sendInvitations,
+	sendReminders,
+} from "#app/collect/invitations.server.ts";
 import { readClosing, wallClockOf } from "#app/collect/survey-closing.ts";
 import { ClosingForm } from "#app/collect/survey-draft.schema.ts";
 import { archiveSurvey, copySurvey } from "#app/collect/survey-life.server.ts";
@@ -37,7 +43,11 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 		const { viewer } = desk;
 		return {
 			survey,
-			mailings: await countMailings(trx, viewer, params.surveyId),
+			mailings: {
+				...(await countMailings(trx, viewer, params.surveyId)),
+				invited: await countInvited(trx, viewer, params.surveyId),
+				withoutAddress: await countWithoutAddress(trx, viewer, params.surveyId),
+			},
 			frame: await listFrameParts(trx, viewer, survey),
 			leftOut: survey.state === "draft" ? await countLeftOut(trx, viewer, survey) : 0,
 		};
