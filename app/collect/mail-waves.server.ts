@@ -1,4 +1,4 @@
-import { type RawBuilder, sql } from "kysely";
+import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import { queueBatch, queueJob } from "#app/jobs/queue.server.ts";
 
