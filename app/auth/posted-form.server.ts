@@ -1,10 +1,10 @@
 import { sentByHeader } from "#app/lib/sent-by.ts";
 import { readableForm } from "#app/lib/readable-form.ts";
 import { isRefusal, type PostedForm, refusal } from "#app/lib/refusal.ts";
-import { holderOf, senderOf } from "./holder.server.ts";
-import { findSessionPerson } from "./session.server.ts";
+import { senderOf } from "./holder.server.ts";
+import { findSessionHolder } from "./session.server.ts";
 
-const heldCodes = new Set(["sign_in_needed", "other_person"]);
+const heldCodes = new Set(["sign_in_needed", "link_session_over", "other_person"]);
 /** Bytes of a form that a page of a refusal holds. */
 const mostHeld = 1_000_000;
 
@@ -23,8 +23,7 @@ export async function withPosted(refused: unknown, request: Request): Promise<un
 async function readPosted(request: Request): Promise<PostedForm | undefined> {
 	const isText = /^application\/x-www-form-urlencoded\b/i.test(request.headers.get("content-type") ?? "");
 	if (!isText || Number(request.headers.get("content-length") ?? Infinity) > mostHeld) return undefined;
-	const personId = await findSessionPerson(request.headers.get("cookie"));
-	const holder = senderOf(request) ?? (personId && holderOf("person", personId));
+	const holder = senderOf(request) ?? (await findSessionHolder(request.headers.get("cookie")));
 	if (!holder) return undefined;
 	const form = readableForm(await request.formData());
 	return { holder, fields: [...form].map(([name, value], place) => ({ place, name, value: String(value) })) };

@@ -1,6 +1,7 @@
 import { createHash, randomBytes } from "node:crypto";
 import { createContext, createCookie, createSessionStorage, type MiddlewareFunction, type Session } from "react-router";
 import { env } from "#app/lib/env.server.ts";
+import { holderOf } from "./holder.server.ts";
 import { scopedTransaction } from "./scope.server.ts";
 
 export type ToastMessage = { key: string; values?: Record<string, string | number>; tone?: "good" | "attention" };
@@ -78,13 +79,18 @@ async function write(id: string, data: SessionData & FlashData): Promise<void> {
 }
 
 /** Whose session it is or was, also after its end. It gives no rights. */
-export async function findSessionPerson(cookies: string | null): Promise<string | undefined> {
+export async function findSessionHolder(cookies: string | null): Promise<string | undefined> {
 	const id: unknown = await sessionCookie().parse(cookies);
 	if (typeof id !== "string") return undefined;
 	const row = await scopedTransaction({ kind: "none" }, (trx) =>
-		trx.selectFrom("auth.session").select("person_id").where("session_hash", "=", hash(id)).executeTakeFirst(),
+		trx
+			.selectFrom("auth.session")
+			.select(["person_id", "personal_link_id"])
+			.where("session_hash", "=", hash(id))
+			.executeTakeFirst(),
 	);
-	return row?.person_id ?? undefined;
+	if (row?.person_id) return holderOf("person", row.person_id);
+	return row?.personal_link_id ? holderOf("link", row.personal_link_id) : undefined;
 }
 
 export const sessionContext = createContext<VisitorSession>();

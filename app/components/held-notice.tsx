@@ -9,7 +9,8 @@ import { NotDone } from "./notice.tsx";
 import { Page } from "./page.tsx";
 import { useHeldPost } from "./use-held-post.ts";
 
-type Why = HeldPost["why"];
+/** Why it was not taken; without scripts also because a personal link is not open any more. */
+export type HeldAs = HeldPost["why"] | "link";
 
 /** Above a page that stays with what is typed on it, as nobody is signed in who could send it. */
 export function HeldNotice() {
@@ -35,7 +36,7 @@ export function HeldNotice() {
 }
 
 /** The same without scripts: a page that holds what was sent, and sends it again. */
-export function HeldForm({ why, posted }: { why: Why; posted: NonNullable<Refusal["posted"]> }) {
+export function HeldForm({ why, posted }: { why: HeldAs; posted: NonNullable<Refusal["posted"]> }) {
 	const { t } = useTranslation();
 	const { pathname, search } = useLocation();
 	if (posted === "lost")
@@ -60,11 +61,11 @@ export function HeldForm({ why, posted }: { why: Why; posted: NonNullable<Refusa
 	);
 }
 
-function Steps({ why, children }: { why: Why; children?: ReactNode }) {
+function Steps({ why, children }: { why: HeldAs; children?: ReactNode }) {
 	const { t } = useTranslation();
 	return (
 		<div className="flex flex-wrap gap-3">
-			<ButtonLink to={why === "over" ? "/sign-in" : "/sign-out"} target="_blank">
+			<ButtonLink to={why === "other" ? "/sign-out" : "/sign-in"} target="_blank">
 				{t(`held.${why}.link`)}
 			</ButtonLink>
 			{children}

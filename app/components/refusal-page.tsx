@@ -3,16 +3,18 @@ import { isRouteErrorResponse, Link, useLocation } from "react-router";
 import { helpContact } from "#app/lib/help-contact.ts";
 import { isRefusal, type Refusal, type RefusalCode } from "#app/lib/refusal.ts";
 import { Button, ButtonLink } from "./button.tsx";
-import { HeldForm } from "./held-notice.tsx";
+import { type HeldAs, HeldForm } from "./held-notice.tsx";
 import { Page } from "./page.tsx";
 
 type ErrorCode = RefusalCode | "unexpected";
+
+const heldAs: Partial<Record<ErrorCode, HeldAs>> = { other_person: "other", link_session_over: "link" };
 
 /** Why a page cannot be shown, in the reader's words, and what to do next. */
 export function RefusalPage({ error }: { error: unknown }) {
 	const { t } = useTranslation();
 	const { code, role, posted } = readError(error);
-	if (posted) return <HeldForm why={code === "other_person" ? "other" : "over"} posted={posted} />;
+	if (posted) return <HeldForm why={heldAs[code] ?? "over"} posted={posted} />;
 	const values = { email: helpContact.email, role: role ? t(`role.needed.${role}`) : "" };
 	return (
 		<Page title={t(`error.${code}.title`)} width="narrow" lead={t(`error.${code}.body`, values)}>

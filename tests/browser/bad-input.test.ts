@@ -205,6 +205,22 @@ test("two megabytes of text come back beside the box, and still more is refused 
 	expect(tooMuch.text).toContain("more text than this page can take");
 });
 
+test("a screen sent when the link's session has ended comes back whole, and is sent once the link is open again", async () => {
+	const { visitor, address, link } = await begun();
+	await owner.query("update auth.session set seen_at = now() - interval '13 hours'");
+	const { status, text } = await visitor.post(`${address}/ask/next_year`, { comment: "Typed too late" });
+	expect(status).toBe(401);
+	expect(text).toContain("your last screen was not saved");
+	expect(text).toContain('name="comment" value="Typed too late"');
+	const again = /action="([^"]+sent-by=[^"]+)"/.exec(text)?.[1] ?? "";
+	const kept = () => count(owner, "collect.answer where value = '\"Typed too late\"'");
+	expect((await visitor.post(again, { comment: "Typed too late" })).status).toBe(401);
+	expect(await kept()).toBe(0);
+	await visitor.post(link, {});
+	expect((await visitor.post(again, { comment: "Typed too late" })).status).toBe(303);
+	expect(await kept()).toBe(1);
+});
+
 test("names and notes with markup are shown as they were typed", async () => {
 	const { visitor, address } = await begun();
 	const start = await visitor.get(address);

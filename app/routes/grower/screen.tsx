@@ -1,6 +1,5 @@
 import { data, href, redirect } from "react-router";
 import type { Route } from "./+types/screen";
-import { requireGrower } from "#app/auth/guard.server.ts";
 import { listDifferences } from "#app/collect/answer-lines.ts";
 import { keepStep } from "#app/collect/keep-step.server.ts";
 import { type PostedStep, readPostedStep } from "#app/collect/posted-step.ts";
@@ -10,7 +9,7 @@ import { showStep } from "#app/collect/show-step.ts";
 import { changeOf, judgeChange, type SentChange, unsureNow, versionOf } from "#app/collect/step-change.ts";
 import { getLanguage } from "#app/i18n/middleware.server.ts";
 import { refusal } from "#app/lib/refusal.ts";
-import { getAnswering, todayIn } from "./parts/answering.server.ts";
+import { getAnswering, requireSender, todayIn } from "./parts/answering.server.ts";
 import { nextAddress } from "./parts/next-address.server.ts";
 import { phonePart } from "./parts/phone.server.ts";
 import { holdsFiles, takePhotoScreen } from "./parts/photo-screen.server.ts";
@@ -31,7 +30,7 @@ export async function loader({ context, params }: Route.LoaderArgs) {
 }
 
 export async function action({ context, params, request }: Route.ActionArgs) {
-	const grower = requireGrower(context, params);
+	const grower = await requireSender(context, params, request);
 	if (holdsFiles(request)) return takePhotoScreen({ context, params, request });
 	const { values, sent } = await readPosted(request);
 	const answering = await getAnswering(context, params);

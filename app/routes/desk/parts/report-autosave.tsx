@@ -7,6 +7,12 @@ import { useFormat } from "#app/i18n/use-format.ts";
 /** What the page's action answers to what was saved by itself. */
 type Answer = { autosaved?: boolean; edit?: number; conflict?: number | null; problems?: unknown[] };
 
+type AutosaveProps = {
+	form: RefObject<HTMLFormElement | null>;
+	/** Is told the count of edits that the next save begins from. */
+	onSaved: (edit: number) => void;
+};
+
 /** Writing pauses this long before it is saved. */
 const pauseMs = 4_000;
 
@@ -14,7 +20,7 @@ const pauseMs = 4_000;
  * Saves the form a moment after its writer pauses, with the count of edits that it began from: what somebody else saved
  * meanwhile is never overwritten. Without scripts the button saves, and this is not there.
  */
-export function Autosave({ form }: { form: RefObject<HTMLFormElement | null> }) {
+export function Autosave({ form, onSaved }: AutosaveProps) {
 	const { t } = useTranslation("report");
 	const format = useFormat();
 	const fetcher = useFetcher<Answer>();
@@ -71,11 +77,13 @@ export function Autosave({ form }: { form: RefObject<HTMLFormElement | null> }) 
 		if (fetcher.state !== "idle" || !data?.autosaved) return;
 		const count = form.current?.elements.namedItem("edit");
 		if (!data.conflict && !data.problems?.length && data.edit && count instanceof HTMLInputElement) {
+			// At once, for a button that is pressed now, and for when the form is drawn again.
 			count.value = String(data.edit);
+			onSaved(data.edit);
 			setSavedAt(new Date());
 		}
 		pressAfter(form, pressed);
-	}, [fetcher, form]);
+	}, [fetcher, form, onSaved]);
 
 	return (
 		<output className="self-center text-sm text-quiet">

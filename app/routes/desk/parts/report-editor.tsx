@@ -1,4 +1,4 @@
-import { useRef } from "react";
+import { useRef, useState } from "react";
 import { useTranslation } from "react-i18next";
 import { Form, useNavigation } from "react-router";
 import { Button, ButtonLink } from "#app/components/button.tsx";
@@ -38,13 +38,14 @@ export function ReportEditor({ report, offered, cautionsAdded, answer }: ReportE
 	const format = useFormat();
 	const busy = useNavigation().state === "submitting";
 	const form = useRef<HTMLFormElement>(null);
+	const [savedEdit, setSavedEdit] = useState(0);
 	const correction = answer?.correction ?? report.correction;
 	useFocusOnHash();
 	return (
 		<>
 			<ErrorSummary problems={answer?.problems.length ? answer.problems : undefined} labels={labels} />
 			<Form method="post" ref={form} key={answer ? "answer" : report.edit} className="max-w-6xl">
-				<input type="hidden" name="edit" value={answer?.edit ?? report.edit} />
+				<input type="hidden" name="edit" value={Math.max(savedEdit, answer?.edit ?? report.edit)} />
 				{/* Enter in a text box presses the first button of a form: it saves, and moves nothing. */}
 				<button type="submit" name="intent" value="save" tabIndex={-1} aria-hidden="true" className="sr-only">
 					{t("report_editor.save")}
@@ -115,7 +116,7 @@ export function ReportEditor({ report, offered, cautionsAdded, answer }: ReportE
 					<Button kind="secondary" name="intent" value="submit">
 						{t("report_editor.submit")}
 					</Button>
-					<Autosave form={form} />
+					<Autosave form={form} onSaved={setSavedEdit} />
 				</div>
 			</Form>
 		</>

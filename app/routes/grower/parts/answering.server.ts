@@ -1,6 +1,7 @@
 import type { RouterContextProvider } from "react-router";
 import { requireGrower } from "#app/auth/guard.server.ts";
 import { holderOf } from "#app/auth/holder.server.ts";
+import { withPosted } from "#app/auth/posted-form.server.ts";
 import { type Answering, findAnswering } from "#app/collect/responses.server.ts";
 import type { Grower } from "#app/auth/viewer.ts";
 import { refusal } from "#app/lib/refusal.ts";
@@ -19,6 +20,15 @@ export async function getAnswering(context: Readonly<RouterContextProvider>, pla
 	if (!answering) throw refusal("survey_not_found");
 	if (!answering.isOpen && !answering.isLate) throw refusal("survey_closed");
 	return { ...answering, holder: holderOfGrower(grower.viewer) };
+}
+
+/** Who sends a screen; a refusal gives back what was sent. */
+export async function requireSender(context: Readonly<RouterContextProvider>, place: Place, request: Request) {
+	try {
+		return requireGrower(context, place);
+	} catch (refused) {
+		throw await withPosted(refused, request);
+	}
 }
 
 function holderOfGrower({ link, person }: Grower): string {
