@@ -2,6 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { type ContactOutcome, dispositionAfter } from "./contacts.schema.ts";
+import { setDisposition } from "./dispositions.server.ts";
 import type { Disposition } from "./frame-list.server.ts";
 import { hasDraftedRelease } from "./survey-opening.server.ts";
 
@@ -46,13 +47,7 @@ export async function takeBackNote(trx: Trx, viewer: Associate, place: Place): P
 	const stood = await findStanding(trx, place);
 	if (!stood || stood.withdrawn || stood.disposition === "complete") return "taken_back";
 	const disposition = await replay(trx, place, stood.before);
-	if (disposition !== stood.disposition)
-		await trx
-			.updateTable("collect.frame_operation")
-			.set({ disposition, disposition_at: sql`now()` })
-			.where("survey_id", "=", surveyId)
-			.where("operation_id", "=", operationId)
-			.execute();
+	if (disposition !== stood.disposition) await setDisposition(trx, place, disposition);
 	return "taken_back";
 }
 

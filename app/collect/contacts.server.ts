@@ -2,6 +2,7 @@ import { sql } from "kysely";
 import type { Trx } from "#app/auth/scope.server.ts";
 import type { Associate } from "#app/auth/viewer.ts";
 import { type ContactOutcome, type ContactWay, dispositionAfter, type NewContact } from "./contacts.schema.ts";
+import { setDisposition } from "./dispositions.server.ts";
 import type { Disposition } from "./frame-list.server.ts";
 import { hasDraftedRelease } from "./survey-opening.server.ts";
 
@@ -86,11 +87,6 @@ async function noteDisposition(
 	if (!asked) return "not_found";
 	const disposition = dispositionAfter(asked, outcome);
 	if (disposition === asked.disposition || (await hasDraftedRelease(trx, surveyId))) return "noted";
-	await trx
-		.updateTable("collect.frame_operation")
-		.set({ disposition, disposition_at: sql`now()` })
-		.where("survey_id", "=", surveyId)
-		.where("operation_id", "=", operationId)
-		.execute();
+	await setDisposition(trx, { surveyId, operationId }, disposition);
 	return "noted";
 }

@@ -11,6 +11,20 @@ const counts = [
 	sql<number>`sum(bearing_trees)::float8`.as("bearingTrees"),
 ] as const;
 
+/** Says anew what became of an operation in a survey. The caller holds its row, and has seen that it is another disposition. */
+export async function setDisposition(
+	trx: Trx,
+	{ surveyId, operationId }: { surveyId: string; operationId: string },
+	disposition: Disposition,
+): Promise<void> {
+	await trx
+		.updateTable("collect.frame_operation")
+		.set({ disposition, disposition_at: sql`now()` })
+		.where("survey_id", "=", surveyId)
+		.where("operation_id", "=", operationId)
+		.execute();
+}
+
 /**
  * What became of a survey's operations with a crop, in counties of the viewer's states: how many, and the bearing trees that
  * they had when the frame was frozen. Crop `all` counts each operation once, with the trees of all the survey's crops.
