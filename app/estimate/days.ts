@@ -3,11 +3,12 @@ import { proportionInterval } from "#app/estimate/interval.ts";
 import {
 	countUpTo,
 	type DayTally,
+	distribution,
 	histogramStrata,
 	quantileEstimate,
 	type QuantileFigure,
 	quartileValues,
-	type WeightedCounts,
+	type Step,
 } from "#app/estimate/quantile.ts";
 import { daySteadiness, type SteadinessCutOffs } from "#app/estimate/steadiness.ts";
 import type { StrataFrame } from "#app/estimate/strata.ts";
@@ -35,30 +36,31 @@ export function estimateDays(
 	const strata = histogramStrata(frame, rows);
 	const present = strata.filter(({ counts }) => counts.length > 0);
 	const respondents = present.reduce((sum, { counts }) => sum + countUpTo(counts, Infinity), 0);
+	const steps = distribution(present);
 	return dayOf(
 		{
 			respondents,
 			joins: joinsAmong(frame, new Set(rows.map(({ stratumKey }) => stratumKey))),
 			everybody: present.every(({ samplingFraction }) => samplingFraction === 1),
-			present,
-			median: () => quantileEstimate(strata, 0.5, { interval: proportionInterval }),
+			steps,
+			median: () => quantileEstimate(strata, 0.5, { interval: proportionInterval, steps }),
 		},
 		cutOffs,
 	);
 }
 
-/** What a figure of days is made of, by whichever weights. `present` are the answers of the area. */
+/** What a figure of days is made of, by whichever weights. `steps` are the area's days with their weights. */
 export type DayParts = Pick<CellParts, "respondents" | "joins" | "everybody"> & {
-	present: readonly WeightedCounts[];
+	steps: readonly Step[];
 	median: () => QuantileFigure | null;
 };
 
 /** A figure of days as it may be leant on: see `estimateDays`. */
-export function dayOf({ present, median, ...parts }: DayParts, cutOffs?: SteadinessCutOffs): DayEstimate {
+export function dayOf({ steps, median, ...parts }: DayParts, cutOffs?: SteadinessCutOffs): DayEstimate {
 	const { respondents, joins, everybody } = parts;
 	const found = { respondents, joins, cv: null };
 	const empty = { standardError: null, lower: null, upper: null, steadiness: "rough" } as const;
-	const values = quartileValues(present);
+	const values = quartileValues(steps);
 	if (values === null) return { ...found, ...empty, value: null, missing: "no_respondents" };
 	const { median: value, ...quartiles } = values;
 	if (respondents === 1) return { ...found, ...empty, value, missing: "one_respondent" };

@@ -58,7 +58,8 @@ export type QuantileFigure = {
 	respondents: number;
 };
 
-type Step = { value: number; cumulative: number };
+/** A value that somebody told, with the weight of all who told it or a lower one. */
+export type Step = { value: number; cumulative: number };
 
 /**
  * Weighted quantile of a domain in a stratified sample, with an interval by inverting the distribution function
@@ -66,7 +67,8 @@ type Step = { value: number; cumulative: number };
  * @param strata every stratum of the design that has respondents, also those with nobody in the domain (no counts).
  * @param p share below the quantile, above 0 and below 1: 0.5 is the median.
  * @param rule what to do where a share ends between two values. @param df degrees of freedom of t; those of the domain
- *   unless given. @param interval of the share; by t unless given. A logit interval never leaves 0 to 1.
+ *   unless given. @param interval of the share; by t unless given. A logit interval never leaves 0 to 1. @param steps the
+ *   domain's distribution, where it is known already.
  * @returns in units of the values; null where nobody of the domain answered. One respondent has no interval. Never NaN.
  * @throws {RangeError} for another p, or as `linearizedVariance` does.
  * Source: Woodruff (1952), from memory; formulas 7 and 17 of the reference set. Checked: R survey 4.1-1 `svyquantile`,
@@ -75,10 +77,10 @@ type Step = { value: number; cumulative: number };
 export function quantileEstimate(
 	strata: readonly HistogramStratum[],
 	p: number,
-	options: QuantileOptions & { df?: number } = {},
+	options: QuantileOptions & { df?: number; steps?: readonly Step[] } = {},
 ): QuantileFigure | null {
 	return quantileByShare(
-		strata,
+		options.steps ?? distribution(strata),
 		p,
 		(value) => {
 			const below = sharesAtOrBelow(strata, value);
@@ -94,17 +96,16 @@ export type QuantileOptions = { rule?: QuantileRule; interval?: ShareInterval };
 export type ShareBelow = { share: Figure; respondents: number; freedom: number };
 
 /**
- * The same by whichever weights: parts of the domain that share one, or each operation by itself.
+ * The same by whichever weights: of parts of the domain that share one, or of each operation by itself.
  * @param shareAt estimates the share at or below a value.
  */
 export function quantileByShare(
-	parts: readonly WeightedCounts[],
+	steps: readonly Step[],
 	p: number,
 	shareAt: (value: number) => ShareBelow,
 	{ rule = "lower", interval = tInterval }: QuantileOptions = {},
 ): QuantileFigure | null {
 	if (!(p > 0 && p < 1)) throw new RangeError(`no quantile at ${p}`);
-	const steps = distribution(parts);
 	if (steps.length === 0) return null;
 
 	const value = valueAt(steps, p, rule);
@@ -121,25 +122,23 @@ export function quantileByShare(
 }
 
 /** Quartiles and median alone, which a stratum of one respondent has too. @returns null where nobody of the domain answered. */
-export function quartileValues(
-	strata: readonly WeightedCounts[],
-): { first: number; median: number; third: number } | null {
-	const steps = distribution(strata);
+export function quartileValues(steps: readonly Step[]): { first: number; median: number; third: number } | null {
 	if (steps.length === 0) return null;
 	const [first, median, third] = [0.25, 0.5, 0.75].map((p) => valueAt(steps, p, "lower")) as [number, number, number];
 	return { first, median, third };
 }
 
 /** Values in rising order, each with the weight at or below it. */
-function distribution(strata: readonly WeightedCounts[]): Step[] {
+export function distribution(parts: readonly WeightedCounts[]): Step[] {
 	const weights = new Map<number, number>();
-	for (const { weight, counts } of strata) {
+	for (const { weight, counts } of parts) {
 		for (const { value, n } of counts) if (n > 0) weights.set(value, (weights.get(value) ?? 0) + weight * n);
 	}
+	const steps = [...weights].map(([value, weight]) => ({ value, cumulative: weight }));
+	steps.sort((a, b) => a.value - b.value);
 	let cumulative = 0;
-	return [...weights.keys()]
-		.toSorted((a, b) => a - b)
-		.map((value) => ({ value, cumulative: (cumulative += weights.get(value)!) }));
+	for (const step of steps) step.cumulative = cumulative += step.cumulative;
+	return steps;
 }
 
 function valueAt(steps: readonly Step[], p: number, rule: QuantileRule): number {

@@ -9,19 +9,21 @@ import type { CropRespondents, DayCount, FrameStratum, KeptTally } from "#app/ta
  * not given are counted and are in none of the sums; a cell with nothing else is still listed, with n = 0. A trigger
  * tallies the facts of a county and stratum anew whenever one of them comes, changes or goes, in the same transaction,
  * so that no rounding is left behind by what went.
- * @param only those of one measure or crop.
+ * @param only those of some measures, or of one crop.
  * @returns rows ordered by measure, crop, county and stratum, so that two runs give the same list.
  */
 export async function listTallies(
 	trx: Transaction<DB>,
 	surveyId: string,
-	only: { measureKey?: string; cropKey?: string } = {},
+	only: { measureKeys?: readonly string[]; cropKey?: string } = {},
 ): Promise<KeptTally[]> {
-	const { measureKey, cropKey } = only;
+	const { measureKeys, cropKey } = only;
 	return trx
 		.selectFrom("collect.tally")
 		.where("survey_id", "=", surveyId)
-		.$if(measureKey !== undefined, (rows) => rows.where("measure_key", "=", measureKey!))
+		.$if(measureKeys !== undefined, (rows) =>
+			rows.where((eb) => eb("measure_key", "=", eb.fn.any(eb.val(measureKeys!)))),
+		)
 		.$if(cropKey !== undefined, (rows) => rows.where("crop_key", "=", cropKey!))
 		.orderBy("measure_key")
 		.orderBy("crop_key")

@@ -6,7 +6,7 @@ import type { WeightedMoments } from "#app/estimate/domain.ts";
 import type { Figure } from "#app/estimate/estimators.ts";
 import { proportionInterval } from "#app/estimate/interval.ts";
 import { type EstimateKind, linearize } from "#app/estimate/linearize.ts";
-import { quantileByShare } from "#app/estimate/quantile.ts";
+import { distribution, quantileByShare } from "#app/estimate/quantile.ts";
 import type { ToldAnswer } from "#app/tally/tally.ts";
 
 /** What is summed of an answer: of a measure itself, or 1 and 0 for a share of operations. */
@@ -71,10 +71,9 @@ export function cellParts(kind: EstimateKind, weighed: WeighedAnswers, inside: r
 /** The parts of an area's figure of days, for `dayOf`. */
 export function dayParts(weighed: WeighedAnswers, inside: readonly number[]): DayParts {
 	const { freedom, ...parts } = standing(weighed, inside);
-	const present = inside.map((i) => ({
-		weight: weighed.weights[i]!,
-		counts: [{ value: weighed.answers[i]!.y, n: 1 }],
-	}));
+	const steps = distribution(
+		inside.map((i) => ({ weight: weighed.weights[i]!, counts: [{ value: weighed.answers[i]!.y, n: 1 }] })),
+	);
 	const shareAt = (value: number) => ({
 		share: weighedFigure("ratio", weighed, inside, atOrBefore(value))!,
 		respondents: parts.respondents,
@@ -82,8 +81,8 @@ export function dayParts(weighed: WeighedAnswers, inside: readonly number[]): Da
 	});
 	return {
 		...parts,
-		present,
-		median: () => quantileByShare(present, 0.5, shareAt, { interval: proportionInterval }),
+		steps,
+		median: () => quantileByShare(steps, 0.5, shareAt, { interval: proportionInterval }),
 	};
 }
 

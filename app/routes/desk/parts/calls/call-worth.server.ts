@@ -29,7 +29,7 @@ async function readSpreads(trx: Trx, surveyId: string, { measures }: FormDefinit
 	const measure = measures.find(({ kind, acrossCrops, base }) => kind !== "day" && acrossCrops && !base);
 	if (!measure || measure.kind === "day") return null;
 	const frame = await listFrameStrata(trx, surveyId);
-	const own = await listTallies(trx, surveyId, { measureKey: measure.key, cropKey: "all" });
+	const own = await listTallies(trx, surveyId, { measureKeys: [measure.key], cropKey: "all" });
 	const joined = joinStrata(
 		frame.filter(({ cropKey }) => cropKey === "all"),
 		respondentsByStratum(own),

@@ -64,7 +64,8 @@ export async function listDraftEstimates(trx: Trx, viewer: Associate, surveyId: 
 	const query = settle(asked, inputs, crops);
 	const choices = measuresOf(inputs, query.crop);
 	const measures = choices.filter((measure) => query.measure === "all" || measure.key === query.measure);
-	const tallies = await listTallies(trx, surveyId, { cropKey: query.crop });
+	const measureKeys = measures.map(({ key }) => key);
+	const tallies = await listTallies(trx, surveyId, { measureKeys, cropKey: query.crop });
 	const { estimates, calibrations } = await estimateByWeights(trx, { ...inputs, measures, tallies });
 	const rows = chooseRows(areas, estimates, query);
 	return {
