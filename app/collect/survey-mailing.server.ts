@@ -133,15 +133,17 @@ export async function markMailingSent(trx: Trx, mailingId: string, messageId: st
 		.execute();
 }
 
-/** Gives a mailing up. An address that took no mail is marked, and its operation undeliverable, for the desk to mend. */
+/**
+ * Gives a mailing up. An address that took no mail is marked, and its operation undeliverable, for the desk to mend: first, since
+ * whoever mends an address writes on the operation before its frames, and a mailing given up writes on its frame.
+ */
 export async function markMailingFailed(trx: Trx, mailing: Mailing, failure: MailingFailure): Promise<void> {
+	const { survey_id: surveyId, operation_id: operationId } = mailing;
+	if (failure === "returned") await markReturned(trx, { surveyId, operationId, email: mailing.email ?? "" });
 	await trx
 		.updateTable("collect.mailing")
 		.set({ failed_at: sql`now()`, failure })
 		.where("mailing_id", "=", mailing.mailing_id)
 		.where("sent_at", "is", null)
 		.execute();
-	if (failure !== "returned") return;
-	const { survey_id: surveyId, operation_id: operationId } = mailing;
-	await markReturned(trx, { surveyId, operationId, email: mailing.email ?? "" });
 }
