@@ -23,6 +23,8 @@ type Guarded = {
 	growerOnly?: true;
 	/** The desk reads; the sums are written by the network's own work, and by triggers in its name. */
 	deskReads?: true;
+	/** Columns that may be written, where triggers keep others. */
+	writes?: { insert: string; update: string };
 	/** The network's own work alone, not even the desk of the row's state. */
 	networkOnly?: true;
 };
@@ -46,7 +48,16 @@ const guarded: Record<string, Guarded> = {
 	// What an associate is typing of a grower's answers goes with the grower who leaves, so the grower's scope reaches it.
 	"collect.entry_draft": { key: "operation_id", desk: all, grower: all },
 	"collect.late_decision": { key: "response_id", desk: ["insert"], grower: [] },
-	"collect.frame_operation": { key: "operation_id", state: "state_fips", desk: write, grower: write },
+	"collect.frame_operation": {
+		key: "operation_id",
+		state: "state_fips",
+		desk: write,
+		grower: write,
+		writes: {
+			insert: "survey_id, operation_id, owner_id, county_fips, state_fips, size_class, stratum_key, disposition",
+			update: "disposition",
+		},
+	},
 	"collect.frame_crop": { key: "operation_id", desk: write, grower: write },
 	"collect.mailing": { key: "operation_id", desk: write, grower: write },
 	"collect.personal_link": { key: "operation_id", desk: write, grower: write },
@@ -97,6 +108,9 @@ const ownersRights: Record<string, string> = {
 	"collect.discard_draft": "deletes a survey that was never opened, for a desk that holds all its states",
 	"collect.discard_rehearsal": "deletes a rehearsal, for a desk that holds all its states",
 	"collect.hidden_surveys": "ids of rehearsals, which the asker could not hide without knowing",
+	"collect.keep_invited_delete": "a trigger, which answers nothing",
+	"collect.keep_invited_insert": "a trigger, which answers nothing",
+	"collect.keep_invited_update": "a trigger, which answers nothing",
 	"collect.know_frames": "has the planner look at frames anew, and answers nothing",
 	"collect.recount_moved_answers": "a trigger, which answers nothing",
 	"collect.refuse_loss_of_states": "a trigger, which answers nothing",
@@ -173,16 +187,18 @@ const keyHeld = "23503";
 
 /** What each kind of statement came to, on the row of one holder. The insert is of that very row, so its key is taken. */
 async function attempts(scope: Scope | null, table: string, holder: Holder, db = app) {
-	const { key, only = "true" } = guarded[table]!;
+	const { key, only = "true", writes } = guarded[table]!;
 	const own = [holder[key]];
 	const its = `${key} = $1 and ${only}`;
 	const { rows } = await owner.query(`select to_jsonb(t) as row from ${table} t where ${its}`, own);
 	expect(rows.length, `${table} holds the row`).toBe(1);
-	const copy = `insert into ${table} select * from jsonb_populate_record(null::${table}, $1)`;
+	const made = writes ? `(${writes.insert}) select ${writes.insert}` : "select *";
+	const copy = `insert into ${table} ${made} from jsonb_populate_record(null::${table}, $1)`;
+	const changed = writes?.update ?? key;
 	return {
 		select: await attempt(scope, `select 1 from ${table} where ${its}`, own, db),
 		insert: await attempt(scope, copy, [rows[0].row], db),
-		update: await attempt(scope, `update ${table} set ${key} = ${key} where ${its}`, own, db),
+		update: await attempt(scope, `update ${table} set ${changed} = ${changed} where ${its}`, own, db),
 		delete: await attempt(scope, `delete from ${table} where ${its}`, own, db),
 	};
 }
