@@ -27,13 +27,13 @@ export async function leaveOpenFrames(trx: Trx, droppedId: string): Promise<Left
 		.where(isOpen)
 		.select(["f.survey_id as surveyId", "f.disposition"])
 		.execute();
-	for (const { surveyId } of frames) await setDisposition(trx, { surveyId, disposition: "not_eligible" }, droppedId);
+	for (const { surveyId } of frames) await setWhileOpen(trx, { surveyId, disposition: "not_eligible" }, droppedId);
 	return frames;
 }
 
 /** Puts the duplicate back where it was asked, as it was, where the survey is still open. */
 export async function rejoinFrames(trx: Trx, droppedId: string, left: Left[]): Promise<void> {
-	for (const frame of left) await setDisposition(trx, frame, droppedId);
+	for (const frame of left) await setWhileOpen(trx, frame, droppedId);
 }
 
 /** Whether surveys have come to rest on a merge: one opened since asks the one that was kept, or it told of what went over. */
@@ -48,7 +48,7 @@ export async function restsOnMerge(
 	return rows[0]?.rests ?? false;
 }
 
-async function setDisposition(trx: Trx, { surveyId, disposition }: Left, operationId: string): Promise<void> {
+async function setWhileOpen(trx: Trx, { surveyId, disposition }: Left, operationId: string): Promise<void> {
 	await trx
 		.updateTable("collect.frame_operation as f")
 		.from("collect.survey as s")

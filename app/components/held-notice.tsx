@@ -54,21 +54,28 @@ export function HeldForm({ why, posted }: { why: HeldAs; posted: NonNullable<Ref
 					<input key={place} type="hidden" name={name} value={value} />
 				))}
 				<Steps why={why}>
-					<Button kind="secondary">{t("held.again")}</Button>
+					<Button kind={why === "link" ? "primary" : "secondary"}>{t("held.again")}</Button>
 				</Steps>
 			</form>
 		</Page>
 	);
 }
 
+/** The way to sign in, first; after a personal link it is the way of the few who came without one. */
 function Steps({ why, children }: { why: HeldAs; children?: ReactNode }) {
 	const { t } = useTranslation();
+	const cameByLink = why === "link";
 	return (
 		<div className="flex flex-wrap gap-3">
-			<ButtonLink to={why === "other" ? "/sign-out" : "/sign-in"} target="_blank">
+			{cameByLink && children}
+			<ButtonLink
+				to={why === "other" ? "/sign-out" : "/sign-in"}
+				target="_blank"
+				kind={cameByLink ? "secondary" : "primary"}
+			>
 				{t(`held.${why}.link`)}
 			</ButtonLink>
-			{children}
+			{!cameByLink && children}
 		</div>
 	);
 }

@@ -125,6 +125,16 @@ async function counts() {
 	return strata.map(({ respondents, frameSize }) => [respondents, frameSize]);
 }
 
+/** Operations whose disposition is other than their answers: whom to write to is told by it alone. */
+async function wrongDispositions() {
+	const { rows } = await owner.query(
+		`select f.operation_id, f.disposition from collect.frame_operation f left join collect.response r using (survey_id, operation_id)
+		where survey_id = $1 and (f.disposition = 'complete') <> (r.submitted_at is not null)`,
+		[surveyId],
+	);
+	return rows;
+}
+
 test("through a survey's whole life facts, tallies and words to code stay what the answers would make from nothing", async () => {
 	const corrected: Closing = {
 		act: "correct",
@@ -169,6 +179,7 @@ test("through a survey's whole life facts, tallies and words to code stay what t
 		if (typeof outcome === "object" && outcome !== null) expect(came, what).toMatchObject(outcome);
 		else expect(came, what).toEqual(outcome);
 		expect(await counts(), what).toEqual([count]);
+		expect(await wrongDispositions(), what).toEqual([]);
 		const now = await kept();
 		expectSameTallies(await rebuilt(), now);
 		const told = await words();
